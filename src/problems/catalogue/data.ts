@@ -1,0 +1,1 @@
+export const dataEntries = {} as const;

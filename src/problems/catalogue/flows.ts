@@ -1,0 +1,1 @@
+export const flowEntries = {} as const;

@@ -1,0 +1,1 @@
+export const valueEntries = {} as const;

@@ -1,0 +1,1 @@
+export const yamlEntries = {} as const;

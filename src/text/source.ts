@@ -1,0 +1,46 @@
+/** A text as it was read, with the path that people know it by. Never edited. */
+export interface Source {
+  readonly path: string;
+  readonly text: string;
+}
+
+/** A stretch of a source: UTF-16 offsets, `to` exclusive. */
+export interface Span {
+  readonly source: Source;
+  readonly from: number;
+  readonly to: number;
+}
+
+/** 1-based lines and columns, as editors count them; the end is exclusive. */
+export interface Place {
+  readonly line: number;
+  readonly column: number;
+  readonly endLine: number;
+  readonly endColumn: number;
+}
+
+/** Where a span lies. Linear in the length of the text before it: for problems, not for hot loops. */
+export function placeOf(span: Span): Place {
+  const [line, column] = lineAndColumn(span.source.text, span.from);
+  const [endLine, endColumn] = lineAndColumn(span.source.text, Math.max(span.from, span.to));
+  return { line, column, endLine, endColumn };
+}
+
+/** The text of a 1-based line, without its line break. */
+export function lineText(source: Source, line: number): string {
+  return source.text.split(/\r\n|\n|\r/, line)[line - 1] ?? "";
+}
+
+function lineAndColumn(text: string, offset: number): [number, number] {
+  let line = 1;
+  let start = 0;
+  const end = Math.min(offset, text.length);
+  for (let i = 0; i < end; i++) {
+    const c = text.charCodeAt(i);
+    if (c === 10 || (c === 13 && text.charCodeAt(i + 1) !== 10)) {
+      line++;
+      start = i + 1;
+    }
+  }
+  return [line, end - start + 1];
+}
