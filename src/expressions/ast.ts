@@ -11,7 +11,13 @@ export type Expression =
   | { readonly type: "number"; readonly value: number; readonly unit: Unit; readonly at: Range }
   | { readonly type: "name"; readonly name: string; readonly at: Range }
   | { readonly type: "negate"; readonly of: Expression; readonly at: Range }
-  | { readonly type: "binary"; readonly operator: Operator; readonly left: Expression; readonly right: Expression; readonly at: Range }
+  | {
+      readonly type: "binary";
+      readonly operator: Operator;
+      readonly left: Expression;
+      readonly right: Expression;
+      readonly at: Range;
+    }
   | { readonly type: "call"; readonly name: string; readonly args: readonly Expression[]; readonly at: Range };
 
 export type Operator = "+" | "-" | "*" | "/" | "^";

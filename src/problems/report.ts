@@ -16,7 +16,12 @@ export function collector(): { report: Report; problems: Problem[] } {
 }
 
 /** One worded problem. */
-export function problem<C extends Code>(code: C, at: Span, data: DataOf<C>, also?: { at: Span; says: string }): Problem {
+export function problem<C extends Code>(
+  code: C,
+  at: Span,
+  data: DataOf<C>,
+  also?: { at: Span; says: string },
+): Problem {
   const e = catalogue[code] as unknown as CatalogueEntry<DataOf<C>>;
   const fix = typeof e.fix === "string" ? e.fix : e.fix(data);
   return { code, severity: e.severity, message: e.says(data), fix, at, ...(also ? { also } : {}) };

@@ -1,0 +1,51 @@
+import type { Network } from "../model/network.js";
+
+/** What a node of a plant is to an engine: a mixed volume, a transport delay, or a meeting of streams without volume. */
+export const Part = { Cell: 0, Delay: 1, Joint: 2 } as const;
+
+/**
+ * A balanced, compiled network: primitive nodes and the steady flows between them, SI.
+ * Kinds have been spelled out (a `repeat: 3` is three cells). Feeds and outlets are joints.
+ */
+export interface Plant {
+  readonly network: Network;
+  /** Values of all names, one slot each. */
+  readonly env: Float64Array;
+  readonly nodes: readonly PlantNode[];
+  /** Links, one per stream between primitive nodes; an exchange is two links. m3/s. */
+  readonly from: Int32Array;
+  readonly to: Int32Array;
+  readonly flow: Float64Array;
+  readonly feeds: readonly { readonly name: string; readonly node: number; readonly flow: number }[];
+  readonly outlets: readonly { readonly name: string; readonly node: number; readonly flow: number }[];
+  /** name in the file (compartment, feed, outlet, `chain.2`) -> node whose outflow it stands for, and where it is entered. */
+  readonly entry: ReadonlyMap<string, number>;
+  readonly exit: ReadonlyMap<string, number>;
+  /** Strongly connected groups of nodes in flow order (Tarjan 1972); a group of one without a self-link is feed-forward. */
+  readonly groups: readonly Int32Array[];
+  /** Named streams with their flows, as the file has them: for tables and drawings. m3/s. */
+  readonly streams: readonly PlantStream[];
+  /** Volumes, m3. `active` leaves out what no flow reaches. */
+  readonly volume: { readonly total: number; readonly active: number; readonly dead: number };
+}
+
+export interface PlantNode {
+  readonly name: string;
+  readonly part: (typeof Part)[keyof typeof Part];
+  /** m3; 0 for a joint. */
+  readonly volume: number;
+  /** All that enters, exchange included, m3/s. */
+  readonly inflow: number;
+}
+
+export interface PlantStream {
+  readonly from: string;
+  readonly to: string;
+  readonly flow: number;
+  readonly role: "forward" | "recycle" | "exchange";
+  /** As the file says it: "30 %", "rest". */
+  readonly written: string;
+}
+
+/** Values to use in place of the file's, SI, by name (`bypass`, `feed.flow`). */
+export type Settings = Readonly<Record<string, number>>;

@@ -1,0 +1,99 @@
+import type { CompartmentKind } from "../compartments/kind.js";
+import type { Span } from "../text/source.js";
+import type { Unit } from "../units/unit.js";
+import type { Value } from "./value.js";
+
+/** A network with every name found and every value bound: what the engineer means, not yet balanced. */
+export interface Network {
+  readonly title: string;
+  readonly at: Span;
+  readonly path: string;
+  readonly notes: string | undefined;
+  /** Constants, parameters and `feed.flow`s: the names that values may use. One slot each in an Env. */
+  readonly names: readonly Named[];
+  /** Indices into `names` in an order in which each depends on earlier ones only. */
+  readonly order: readonly number[];
+  readonly feeds: readonly Feed[];
+  readonly compartments: readonly Compartment[];
+  readonly outlets: readonly Outlet[];
+  readonly requires: readonly Requirement[];
+  readonly checks: readonly Check[];
+  /** Units that the file uses, per dimension key: results are printed in them. */
+  readonly units: UnitBook;
+}
+
+/** A name that has a value. `slot` is its index in `Network.names` and in an Env. */
+export interface Named {
+  readonly name: string;
+  readonly slot: number;
+  readonly role: "constant" | "parameter" | "feed-flow";
+  readonly at: Span;
+  readonly value: Value;
+  readonly between: readonly [Value, Value] | undefined;
+  readonly spacing: "linear" | "log";
+  readonly about: string | undefined;
+}
+
+export interface Feed {
+  readonly name: string;
+  readonly at: Span;
+  readonly flow: Value;
+  readonly flowSlot: number;
+  readonly streams: readonly Stream[];
+}
+
+export interface Compartment {
+  readonly name: string;
+  readonly at: Span;
+  readonly kind: CompartmentKind;
+  /** By key of the kind: bound values. */
+  readonly values: Readonly<Record<string, Value>>;
+  /** Whole numbers of the kind (`repeat`). */
+  readonly counts: Readonly<Record<string, number>>;
+  readonly streams: readonly Stream[];
+  readonly exchanges: readonly Exchange[];
+  readonly toAt: Span;
+}
+
+export interface Outlet {
+  readonly name: string;
+  readonly at: Span;
+}
+
+/** One branch of a `to:`. Exactly one of the three ways to say how much. */
+export interface Stream {
+  readonly to: string;
+  readonly at: Span;
+  readonly split: { readonly is: "share" | "flow"; readonly value: Value } | { readonly is: "rest" | "all" };
+}
+
+/** Equal flow both ways between a compartment and a partner. */
+export interface Exchange {
+  readonly partner: string;
+  readonly at: Span;
+  readonly flow: Value;
+}
+
+/** `left < right` (or <=, >, >=): what physics forbids a fit to try. `of` gives the slack, positive where it holds. */
+export interface Requirement {
+  readonly text: string;
+  readonly at: Span;
+  slack(env: ArrayLike<number>): number;
+}
+
+/** A statement that `verify` tests. */
+export interface Check {
+  readonly at: Span;
+  readonly what: "mean-time" | "volume" | "flow";
+  readonly of: string;
+  readonly equals: Value;
+  /** Relative to `equals`. */
+  readonly within: number;
+}
+
+/** The unit to print a dimension in. `hint` tells a per-key favourite apart where a dimension has two uses. */
+export interface UnitBook {
+  unitFor(dimension: readonly number[]): Unit;
+  /** Unit of time: that of the first feed's flow. */
+  readonly time: Unit;
+}

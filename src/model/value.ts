@@ -1,0 +1,29 @@
+import type { Expression } from "../expressions/ast.js";
+import type { Span } from "../text/source.js";
+import type { Dimension } from "../units/dimension.js";
+import type { Unit } from "../units/unit.js";
+
+/** Values of all names of a document, SI, one slot per name. */
+export type Env = ArrayLike<number>;
+
+/** A written value with its names resolved to slots of an Env. */
+export interface Value {
+  readonly at: Span;
+  readonly dimension: Dimension;
+  /** The unit first written in it, for printing; undefined where it is made of names alone. */
+  readonly unit: Unit | undefined;
+  /** For derivatives, and to show how the value came about. */
+  readonly expression: Expression;
+  /** Every name that it depends on directly. */
+  readonly uses: readonly string[];
+  /** The number, in SI. */
+  of(env: Env): number;
+  /** One standard deviation as the file states it, in SI; undefined where none is stated. */
+  readonly sd: ((env: Env) => number) | undefined;
+}
+
+/** A quantity ready to print: SI value and the unit that people see. */
+export interface Quantity {
+  readonly value: number;
+  readonly unit: Unit;
+}
