@@ -1,0 +1,101 @@
+import { type Halt, integrateByOdex, type StretchResult } from "./odex.js";
+
+export interface IntegrateOptions {
+  /** Writes dy/dt at (t, y) into dy. Both arrays are reused: copy what must be kept. */
+  readonly rhs: (t: number, y: Float64Array, dy: Float64Array) => void;
+  /** State at `from`. */
+  readonly start: ArrayLike<number>;
+  readonly from: number;
+  /** May lie before `from`: time then runs backwards. */
+  readonly to: number;
+  /** "auto" takes the non-stiff method. */
+  readonly method?: "auto" | "nonstiff";
+  /** Relative tolerance of a step, default 1e-9; under 1e-14 it is taken as 1e-14. */
+  readonly relative?: number;
+  /** Absolute tolerance, in the unit of the state, one for all or one per component; default 1e-12. */
+  readonly absolute?: number | ArrayLike<number>;
+  /** Times at which the state is wanted, from `from` towards `to`, ends included; those outside are left out. Default: `to`. */
+  readonly outputs?: ArrayLike<number>;
+  /** Accepted steps after which the run is given up, default 1e7. */
+  readonly maxSteps?: number;
+  /** Times, from `from` towards `to`, where the right-hand side jumps or kinks: no step crosses one. */
+  readonly stops?: ArrayLike<number>;
+}
+
+export type IntegrateEnd = "reached" | { readonly stopped: number; readonly why: Halt };
+
+export interface Integration {
+  /** The output times that were reached. */
+  readonly times: Float64Array;
+  /** One state per output time. */
+  readonly states: Float64Array[];
+  readonly end: IntegrateEnd;
+  /** State at `to`, or where the run stopped. */
+  readonly last: Float64Array;
+  readonly stats: { readonly steps: number; readonly rejected: number; readonly rhs: number };
+}
+
+/**
+ * Solves dy/dt = rhs(t, y) by variable-order extrapolation (non-stiff), restarted at every stop.
+ *
+ * At a stop the side before sees only the value before and the side after only the value after, whichever way the
+ * right-hand side decides at the stop itself. Outputs between steps are interpolated to the same tolerance.
+ *
+ * A right-hand side that gives a non-finite number inside a trial step makes the step smaller; where no step is small enough
+ * the end says "not-finite". Failure is a value: the outputs reached so far are kept.
+ */
+export function integrate(o: IntegrateOptions): Integration {
+  const direction = o.to < o.from ? -1 : 1;
+  const y = Float64Array.from(o.start);
+  const wanted = Array.from(o.outputs ?? [o.to]).filter(
+    (t) => (t - o.from) * direction >= 0 && (o.to - t) * direction >= 0,
+  );
+  const states: Float64Array[] = [];
+  const keep = (state: Float64Array): void => {
+    states.push(state.slice());
+  };
+  const stats = { steps: 0, rejected: 0, rhs: 0 };
+  const finish = (end: IntegrateEnd): Integration => {
+    return { times: Float64Array.from(wanted.slice(0, states.length)), states, end, last: y, stats };
+  };
+  if (!y.every(Number.isFinite)) return finish({ stopped: o.from, why: "not-finite" });
+
+  const relative = Math.max(o.relative ?? 1e-9, 1e-14);
+  const floor = 1e-150; // a tolerance of 0 would divide 0 by 0 where a state is 0
+  const absolute =
+    typeof o.absolute === "object"
+      ? Array.from(o.absolute, (a) => Math.max(a, floor))
+      : Math.max(o.absolute ?? 1e-12, floor);
+  const maxSteps = o.maxSteps ?? 1e7;
+  let from = o.from;
+  for (const to of [...inside(o.stops ?? [], o.from, o.to), o.to]) {
+    while (states.length < wanted.length && wanted[states.length] === from) keep(y);
+    if (to === from || y.length === 0) continue;
+    let count = states.length;
+    while (count < wanted.length && (to - wanted[count]) * direction >= 0) count++;
+    const outputs = wanted.slice(states.length, count);
+    const stretch = { rhs: o.rhs, from, to, relative, absolute, maxSteps: maxSteps - stats.steps, outputs };
+    const result: StretchResult = integrateByOdex(stretch, y, keep);
+    stats.steps += result.steps;
+    stats.rejected += result.rejected;
+    stats.rhs += result.rhs;
+    if (result.halt !== undefined) return finish({ stopped: result.t, why: result.halt });
+    from = to;
+  }
+  while (states.length < wanted.length) keep(y);
+  return finish("reached");
+}
+
+/** The stops strictly between, sorted in the direction of time, each once, none closer to its neighbour than rounding allows. */
+function inside(stops: ArrayLike<number>, from: number, to: number): number[] {
+  const direction = to < from ? -1 : 1;
+  const apart = 16 * Number.EPSILON * Math.max(Math.abs(from), Math.abs(to));
+  const kept: number[] = [];
+  let before = from;
+  for (const t of Array.from(stops).sort((a, b) => (a - b) * direction)) {
+    if ((t - before) * direction <= apart || (to - t) * direction <= apart) continue;
+    kept.push(t);
+    before = t;
+  }
+  return kept;
+}
