@@ -1,5 +1,10 @@
 import { defineConfig } from "vitest/config";
 
 export default defineConfig({
-  test: { include: ["test/**/*.test.ts"], testTimeout: 60_000, hookTimeout: 60_000 },
+  test: {
+    include: ["test/**/*.test.ts"],
+    globalSetup: [".build/test-setup.mjs"],
+    testTimeout: 60_000,
+    hookTimeout: 60_000,
+  },
 });

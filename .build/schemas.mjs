@@ -1,0 +1,93 @@
+// Writes what is made from the declarations of the documents: the JSON Schemas that editors read (committed)
+// and the validators compiled ahead of time with the shapes beside them (not committed).
+import { existsSync, mkdirSync, readdirSync, readFileSync, renameSync, statSync, writeFileSync } from "node:fs";
+import { dirname, join } from "node:path";
+import { fileURLToPath } from "node:url";
+import { build } from "esbuild";
+
+const root = dirname(dirname(fileURLToPath(import.meta.url)));
+const validatorsFile = join(root, "src/schema/validators.js");
+
+/** Makes schemas and validators; returns the texts by path, writes nothing. */
+export async function makeSchemas() {
+  const { documentSchemas, documentShapes, editorKeywords, kinds } = await loadDeclarations();
+  const shapes = documentShapes(kinds);
+  const schemas = documentSchemas(shapes);
+  const files = new Map();
+  for (const [kind, schema] of Object.entries(schemas))
+    files.set(join(root, "schemas", `${kind}.schema.json`), `${JSON.stringify(schema, null, 2)}\n`);
+  files.set(validatorsFile, await validatorSource(schemas, shapes, editorKeywords));
+  return files;
+}
+
+/** Makes and writes them, touching only files that changed. */
+export async function writeSchemas() {
+  for (const [path, text] of await makeSchemas()) writeIfNew(path, text);
+}
+
+/** True where the validators are missing or older than a declaration. */
+export function schemasAreStale() {
+  if (!existsSync(validatorsFile)) return true;
+  const made = statSync(validatorsFile).mtimeMs;
+  return ["src/schema", "src/schema/documents", "src/compartments", ".build"].some((folder) =>
+    readdirSync(join(root, folder)).some(
+      (file) => /\.(ts|mjs)$/.test(file) && statSync(join(root, folder, file)).mtimeMs > made,
+    ),
+  );
+}
+
+async function loadDeclarations() {
+  const { outputFiles } = await build({
+    stdin: {
+      contents: `
+        export { documentSchemas, editorKeywords } from "./src/schema/json-schema.ts";
+        export { documentShapes } from "./src/schema/documents.ts";
+        export { kinds } from "./src/compartments/index.ts";`,
+      resolveDir: root,
+      loader: "ts",
+    },
+    bundle: true,
+    format: "esm",
+    platform: "node",
+    banner: { js: 'import { createRequire } from "node:module"; const require = createRequire("/");' },
+    write: false,
+    logLevel: "error",
+  });
+  return import(`data:text/javascript;base64,${Buffer.from(outputFiles[0].text).toString("base64")}`);
+}
+
+async function validatorSource(schemas, shapes, editorKeywords) {
+  const { default: Ajv2020 } = await import("ajv/dist/2020.js");
+  const { default: standaloneCode } = await import("ajv/dist/standalone/index.js");
+  const ajv = new Ajv2020({
+    allErrors: true,
+    allowUnionTypes: true,
+    strictRequired: false,
+    strictTypes: false,
+    code: { source: true, esm: true, lines: false },
+  });
+  ajv.addVocabulary(editorKeywords);
+  const names = Object.keys(schemas);
+  for (const name of names) ajv.addSchema(schemas[name]);
+  const code = standaloneCode(ajv, Object.fromEntries(names.map((name) => [name, `${name}.schema.json`])));
+  const entries = names.map((name) => `  ${name}: { shape: ${JSON.stringify(shapes[name])}, validate: ${name} },`);
+  return `${code.replace(/^"use strict";/, "// Written by the build; do not edit.\n")}\nexport const documents = {\n${entries.join("\n")}\n};\n`;
+}
+
+function writeIfNew(path, text) {
+  if (existsSync(path) && readFileSync(path, "utf8") === text) {
+    if (path === validatorsFile) writeAtOnce(path, text); // its age tells whether it is up to date
+    return;
+  }
+  writeAtOnce(path, text);
+}
+
+/** Other processes may read it meanwhile: they see the old file or the new one. */
+function writeAtOnce(path, text) {
+  mkdirSync(dirname(path), { recursive: true });
+  const draft = `${path}.${process.pid}.tmp`;
+  writeFileSync(draft, text);
+  renameSync(draft, path);
+}
+
+export { root };

@@ -1,0 +1,46 @@
+import type { Shape } from "../shape.js";
+import { either, heading, later, list, named, quantity, record, text } from "./common.js";
+
+const upset: Shape = { is: "later", sort: "map", says: "a feed value that changes in time" };
+
+/** One operating point. */
+export const dutyShape: Shape = record({
+  ...heading("duty", "The operating point.", "Normal production, 15 % up"),
+  chemistry: {
+    shape: text,
+    says: "The chemistry file, relative to this file. Without one: pure mixing.",
+    example: "../../shared/chemistry/hydrolysis.yaml",
+  },
+  flows: {
+    shape: named(either(quantity("flow"), upset), "dotted"),
+    says: "Flows by feed, where they are not the network's.",
+    example: "{feed: 11.5 L/min}",
+  },
+  with: {
+    shape: named(quantity(), "dotted"),
+    says: "Constants set otherwise here.",
+    example: "{k2: 0.4 L/mol/min ± 20 %}",
+  },
+  feeds: {
+    says: "What each feed brings: concentrations by species.",
+    example: "{feed: {A: 1 mol/L ± 1 %, B: 1.2 mol/L}}",
+    shape: named(
+      {
+        is: "named",
+        each: either(quantity("molar concentration", "mass concentration", "number concentration"), upset),
+        keys: "names",
+        later: { temperature: "The temperature of the feed." },
+      },
+      "dotted",
+    ),
+  },
+  temperature: { shape: quantity("temperature"), says: "The temperature everywhere (isothermal).", example: "60 degC" },
+  report: {
+    says: "The figures that count: `conversion of A`, `yield of P from A`, `selectivity of P over S`, `log-removal of A`, `A at product`, `t10 at product`.",
+    example: "[conversion of A, yield of P from A]",
+    shape: list(text),
+  },
+  local: later("Constants that hold in some compartments only."),
+  heat: later("Heat balances: adiabatic or with jackets."),
+  contents: later("Where a transient starts."),
+});

@@ -1,0 +1,202 @@
+import { partial } from "../partial.js";
+import type { KeyShape, RecordShape, Shape, VariantShape } from "../shape.js";
+import { choice, either, heading, later, list, name, named, quantity, record, text } from "./common.js";
+
+/** What the schema needs to know of a kind of compartment; the kinds table has more. */
+export interface KindKeys {
+  readonly says: string;
+  readonly keys: Readonly<Record<string, KeyShape>>;
+  readonly flows: boolean;
+  readonly exchanges: boolean;
+}
+
+/** Kinds of the language that this version refuses, unless the kinds table has them. */
+const laterKinds: Record<string, string> = {
+  dispersed: "Flow with axial dispersion.",
+  laminar: "Segregated laminar flow in a round tube.",
+  cascade: "Gamma-distributed residence times: fractional tanks in series.",
+  zones: "Many stirred cells from tables.",
+  part: "Another network placed here as a part.",
+};
+
+/** Keys of the language that belong to some kind and that this version refuses there. */
+const laterKeys: Record<string, string> = {
+  backflow: "Flow that returns upstream between each two of a repeated tank.",
+  stagnant: "Pockets that exchange with the flow all along the body.",
+  sends: "One species that divides otherwise than the liquid.",
+};
+
+const to: KeyShape = {
+  says: "Where the outflow goes: one name takes all of it; a map splits it by shares of the outflow (`30 %`), fixed flows (`4 L/min`) and at most one `rest`.",
+  required: true,
+  example: "{loop: 4 L/min, product: rest}",
+  shape: either(name, named(quantity("ratio", "flow"), "dotted")),
+};
+
+const exchange: KeyShape = {
+  says: "Partners and the flow exchanged with each, equal both ways. Written on one side only.",
+  example: "{corner: 1.5 L/min}",
+  shape: named(quantity("flow"), "dotted"),
+};
+
+function kindRecord(kind: KindKeys): VariantShape {
+  const keys: Record<string, KeyShape> = {
+    kind: { shape: text, says: "What sort of body this is.", required: true },
+    ...kind.keys,
+  };
+  if (kind.flows) keys["to"] = kind.exchanges ? { ...to, required: false } : to;
+  if (kind.exchanges) keys["exchange"] = exchange;
+  if (kind.flows) for (const key in laterKeys) if (!(key in keys)) keys[key] = later(laterKeys[key]);
+  return { says: kind.says, keys };
+}
+
+/** Compartments by the value of `kind`. */
+export function compartmentShape(kinds: Readonly<Record<string, KindKeys>>): Shape {
+  const of: Record<string, VariantShape> = {};
+  for (const kind in kinds) of[kind] = kindRecord(kinds[kind]);
+  for (const kind in laterKinds) of[kind] ??= { says: laterKinds[kind], keys: {}, later: true };
+  return { is: "variant", by: "kind", of };
+}
+
+const constants: KeyShape = {
+  says: "Facts that no fit moves: a value, or a map of a value and what it is about.",
+  example: "{total: 1000 L ± 1 %}",
+  shape: named(
+    either(
+      quantity(),
+      record({
+        value: { shape: quantity(), says: "The value, with its unit.", required: true, example: "1000 L ± 1 %" },
+        about: { shape: text, says: "What it means, and where it comes from." },
+      }),
+    ),
+  ),
+};
+
+const parameters: KeyShape = {
+  says: "What a fit may move. Everything else uses `value`.",
+  example: "{bypass: {value: 10 %, between: [0 %, 60 %]}}",
+  shape: named(
+    record({
+      value: {
+        shape: quantity(),
+        says: "The value where nothing fits it, and one start of a fit.",
+        required: true,
+        example: "10 %",
+      },
+      between: {
+        shape: list(quantity(), 2),
+        says: "The lowest and the highest value that a fit may try. A fit needs it.",
+        example: "[0 %, 60 %]",
+      },
+      spacing: {
+        shape: choice("linear", "log"),
+        says: "How starts are spread between the bounds: `log` for what may differ by powers of ten.",
+        default: "linear",
+      },
+      about: {
+        shape: text,
+        says: "What it means, for tables and reports.",
+        example: "share of the feed that slips to the outlet",
+      },
+      per: later("A value of its own in each trial."),
+    }),
+  ),
+};
+
+const feeds: KeyShape = {
+  says: "What flows in, by name: how much, and where to.",
+  example: "{feed: {flow: 10 L/min, to: bulk}}",
+  shape: named(
+    record({
+      flow: {
+        shape: quantity("flow"),
+        says: "The flow of the feed. `feed.flow` names it elsewhere.",
+        required: true,
+        example: "10 L/min",
+      },
+      to,
+    }),
+  ),
+};
+
+const checks: KeyShape = {
+  says: "Statements that `verify` tests, so that a library of networks is tested like code.",
+  example: "[{mean-time: product, equals: 100 min, within: 0.01 %}]",
+  shape: list(
+    record(
+      {
+        "mean-time": {
+          shape: name,
+          says: "The mean residence time at this outlet; `all` for all outlets together.",
+          example: "product",
+        },
+        volume: {
+          shape: name,
+          says: "The volume of this compartment; `all` for the whole vessel, dead volume included.",
+          example: "all",
+        },
+        flow: { shape: name, says: "The flow through this compartment, feed or outlet.", example: "bulk" },
+        equals: {
+          shape: quantity("time", "volume", "flow"),
+          says: "What it must be.",
+          required: true,
+          example: "100 min",
+        },
+        within: {
+          shape: quantity("ratio"),
+          says: "How far it may be off, relative to `equals`.",
+          default: "1e-9",
+          example: "0.01 %",
+        },
+      },
+      ["mean-time", "volume", "flow"],
+    ),
+  ),
+};
+
+const title = "What the network describes. The first key says what the file is; its value is the title.";
+
+/** A network whole. */
+function wholeNetwork(kinds: Readonly<Record<string, KindKeys>>): RecordShape {
+  return record({
+    ...heading("network", title, "Ester hydrolysis vessel V-3, as built"),
+    constants,
+    parameters,
+    requires: {
+      shape: list(text),
+      says: "What physics forbids a fit to try: comparisons that must hold.",
+      example: "[riser + stagnant < total]",
+    },
+    feeds,
+    compartments: {
+      shape: named(compartmentShape(kinds)),
+      says: "The bodies of the vessel by name, with where their outflow goes.",
+      example: "{bulk: {kind: stirred, volume: 1000 L, to: product}}",
+    },
+    outlets: { shape: list(name), says: "Names where flow leaves the network.", example: "[product]" },
+    checks,
+    "based-on": later("The network that this one is a variant of."),
+    basis: later("Hold-ups in kg and flows in kg/h."),
+  });
+}
+
+/**
+ * A network, or a change to one (`change:` and no more, which a study applies to each rival).
+ * @param kinds the table of compartment kinds; kinds of the language that it lacks are refused as not in this version
+ */
+export function networkShape(kinds: Readonly<Record<string, KindKeys>>): Shape {
+  const whole = wholeNetwork(kinds);
+  const { network, format, notes, ...rest } = whole.keys;
+  const change: KeyShape = {
+    shape: partial(record(rest)),
+    says: "What is different: merged into the network key by key. `null` removes; lists and `to` are replaced whole; a changed `kind` replaces the compartment.",
+    required: true,
+    example: "{parameters: {bypass: {value: 2 %}}}",
+  };
+  return {
+    is: "depends",
+    on: "change",
+    present: record({ network, format, notes, change, "based-on": whole.keys["based-on"] }),
+    absent: whole,
+  };
+}

@@ -1,0 +1,40 @@
+import type { KeyShape, Shape } from "./shape.js";
+
+/**
+ * The shape of a change to a document of the given shape: nothing is required, and `null` may stand anywhere inside to remove what is there.
+ * A variant whose deciding key may be left out takes the keys of all its kinds; the merged document is checked whole afterwards.
+ */
+export function partial(shape: Shape): Shape {
+  switch (shape.is) {
+    case "record":
+      return { is: "record", keys: partialKeys(shape.keys) };
+    case "named":
+      return { ...shape, each: orNothing(partial(shape.each)) };
+    case "variant": {
+      const keys: Record<string, KeyShape> = {};
+      const kinds = Object.entries(shape.of).filter(([, v]) => !v.later);
+      for (const [, variant] of kinds)
+        for (const key in variant.keys) if (!keys[key] || keys[key].later) keys[key] = variant.keys[key];
+      keys[shape.by] = { ...keys[shape.by], shape: { is: "choice", of: kinds.map(([kind]) => kind) } };
+      return { is: "record", keys: partialKeys(keys) };
+    }
+    case "either":
+      return { is: "either", of: shape.of.map(partial) };
+    default:
+      return shape;
+  }
+}
+
+function partialKeys(keys: Readonly<Record<string, KeyShape>>): Record<string, KeyShape> {
+  const out: Record<string, KeyShape> = {};
+  for (const key in keys) {
+    const { required: _, ...rest } = keys[key];
+    out[key] = rest.later ? rest : { ...rest, shape: orNothing(partial(rest.shape)) };
+  }
+  return out;
+}
+
+const orNothing = (shape: Shape): Shape => ({
+  is: "either",
+  of: [...(shape.is === "either" ? shape.of : [shape]), { is: "nothing" }],
+});
