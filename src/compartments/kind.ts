@@ -1,6 +1,12 @@
 import type { KeyShape } from "../schema/shape.js";
 import type { Box, Svg } from "../svg/svg.js";
 
+/** Values of a compartment's quantity keys (SI) and of its whole-number keys. */
+export interface KindValues {
+  readonly values: Readonly<Record<string, number>>;
+  readonly counts: Readonly<Record<string, number>>;
+}
+
 /** Everything that one kind of compartment is. One kind, one file, one line in `kinds`. */
 export interface CompartmentKind {
   readonly name: string;
@@ -10,14 +16,17 @@ export interface CompartmentKind {
   readonly keys: Readonly<Record<string, KeyShape>>;
   /** May streams pass through it? `dead` says no. */
   readonly flows: boolean;
-  /** May it have `exchange:`? */
+  /** May any of this kind have `exchange:`, and may this very one? */
   readonly exchanges: boolean;
+  readonly mayExchange: (counts: Readonly<Record<string, number>>) => boolean;
+  /** Liquid held, m3. */
+  readonly volume: (of: KindValues) => number;
   /** Spells the compartment out in primitive nodes; returns where streams enter and leave (undefined: not in the balance). */
-  spell(maker: NodeMaker, values: Readonly<Record<string, number>>): Ports | undefined;
+  spell(maker: NodeMaker, of: KindValues): Ports | undefined;
   /** Its picture inside a box whose area stands for the volume. */
-  picture(box: Box, values: Readonly<Record<string, number>>): Svg;
+  picture(box: Box, of: KindValues): Svg;
   /** Proportion width / height of that box. */
-  readonly aspect: (values: Readonly<Record<string, number>>) => number;
+  readonly aspect: (of: KindValues) => number;
 }
 
 /** Where streams enter and leave a spelled-out compartment, and its members by their suffix ("1", "2"; none for one). */

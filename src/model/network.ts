@@ -18,6 +18,8 @@ export interface Network {
   readonly outlets: readonly Outlet[];
   readonly requires: readonly Requirement[];
   readonly checks: readonly Check[];
+  /** Every name that some value, bound or requirement uses. */
+  readonly used: ReadonlySet<string>;
   /** Units that the file uses, per dimension key: results are printed in them. */
   readonly units: UnitBook;
 }
@@ -86,12 +88,13 @@ export interface Check {
   readonly at: Span;
   readonly what: "mean-time" | "volume" | "flow";
   readonly of: string;
+  readonly ofAt: Span;
   readonly equals: Value;
   /** Relative to `equals`. */
   readonly within: number;
 }
 
-/** The unit to print a dimension in. `hint` tells a per-key favourite apart where a dimension has two uses. */
+/** The unit to print a dimension in: the one that the file uses first, else the usual one. */
 export interface UnitBook {
   unitFor(dimension: readonly number[]): Unit;
   /** Unit of time: that of the first feed's flow. */

@@ -1,0 +1,33 @@
+import type { Network } from "../model/network.js";
+import { nearest } from "../problems/nearest.js";
+import type { Report } from "../problems/report.js";
+import type { Dimension } from "../units/dimension.js";
+import { formatQuantity } from "../units/format.js";
+import { parameterBounds, requirements, sharesBesideRest } from "./bounds.js";
+import { exchanges } from "./exchanges.js";
+import { placeNames, streamTargets, unusedNames } from "./names.js";
+import type { Rule } from "./rule.js";
+import { splits } from "./splits.js";
+import { topologyOf } from "./topology.js";
+import { feedsAndOutlets, waysThrough } from "./ways.js";
+
+const rules: readonly Rule[] = [
+  placeNames,
+  streamTargets,
+  feedsAndOutlets,
+  waysThrough,
+  splits,
+  exchanges,
+  parameterBounds,
+  requirements,
+  sharesBesideRest,
+  unusedNames,
+];
+
+/** Runs every rule on a network whose names and values are all bound. */
+export function checkNetwork(network: Network, env: ArrayLike<number>, report: Report): void {
+  const topology = topologyOf(network);
+  const say = (si: number, dimension: readonly number[]) =>
+    formatQuantity(si, network.units.unitFor(dimension as Dimension), 6);
+  for (const rule of rules) rule(network, report, { topology, nearest, env, say });
+}

@@ -1,0 +1,30 @@
+import type { Compartment } from "../model/network.js";
+import type { Rule } from "./rule.js";
+
+/** Exchange is between two single stirred bodies and written once. */
+export const exchanges: Rule = (network, report, { nearest }) => {
+  const bodies = new Map(network.compartments.map((c) => [c.name, c]));
+  const seen = new Map<string, (typeof network)["at"]>();
+  for (const c of network.compartments) {
+    for (const e of c.exchanges) {
+      const partner = bodies.get(e.partner);
+      if (!partner) {
+        const near = nearest(e.partner, [...bodies.keys()].filter((n) => n !== c.name));
+        report("unknown-place", e.at, { name: e.partner, wanted: "compartment", nearest: near });
+        continue;
+      }
+      const why = partner === c ? "it is itself" : [c, partner].flatMap((b) => refusal(b))[0];
+      if (why) report("exchange-partner", e.at, { name: c.name, partner: e.partner, why });
+      const key = [c.name, e.partner].sort().join(" ");
+      const earlier = seen.get(key);
+      if (earlier) {
+        report("exchange-twice", e.at, { name: c.name, partner: e.partner }, { at: earlier, says: "written first here" });
+      } else seen.set(key, e.at);
+    }
+  }
+};
+
+function refusal(body: Compartment): string[] {
+  if (!body.kind.exchanges) return [`'${body.name}' is ${body.kind.name}`];
+  return body.kind.mayExchange(body.counts) ? [] : [`'${body.name}' is a chain of several`];
+}

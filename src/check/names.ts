@@ -1,0 +1,39 @@
+import type { Rule } from "./rule.js";
+
+/** Feeds, compartments and outlets share one set of names; every stream must go to one of them. */
+export const placeNames: Rule = (network, report) => {
+  const seen = new Map<string, { at: (typeof network)["at"]; as: string }>();
+  const all = [
+    ...network.feeds.map((n) => ({ ...n, as: "a feed" })),
+    ...network.compartments.map((n) => ({ ...n, as: "a compartment" })),
+    ...network.outlets.map((n) => ({ ...n, as: "an outlet" })),
+  ];
+  for (const { name, at, as } of all) {
+    const earlier = seen.get(name);
+    if (earlier) report("name-taken", at, { name, by: earlier.as }, { at: earlier.at, says: "declared first here" });
+    else seen.set(name, { at, as });
+  }
+};
+
+/** Every stream ends in a place that exists and may be entered. */
+export const streamTargets: Rule = (network, report, { nearest }) => {
+  const bodies = new Map(network.compartments.map((c) => [c.name, c]));
+  const outlets = new Set(network.outlets.map((o) => o.name));
+  const feeds = new Set(network.feeds.map((f) => f.name));
+  for (const node of [...network.feeds, ...network.compartments]) {
+    for (const s of node.streams) {
+      if (feeds.has(s.to)) report("into-feed", s.at, { name: s.to, from: node.name });
+      else if (!bodies.has(s.to) && !outlets.has(s.to)) {
+        const wanted = "compartment or outlet";
+        report("unknown-place", s.at, { name: s.to, wanted, nearest: nearest(s.to, [...bodies.keys(), ...outlets]) });
+      } else if (bodies.get(s.to)?.kind.flows === false) report("dead-with-streams", s.at, { name: s.to });
+    }
+  }
+};
+
+/** Constants and parameters that nothing uses. */
+export const unusedNames: Rule = (network, report) => {
+  for (const n of network.names) {
+    if (n.role !== "feed-flow" && !network.used.has(n.name)) report("unused-name", n.at, { name: n.name, role: n.role });
+  }
+};

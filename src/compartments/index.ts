@@ -1,0 +1,8 @@
+import { dead } from "./dead.js";
+import { junction } from "./junction.js";
+import type { CompartmentKind } from "./kind.js";
+import { stirred } from "./stirred.js";
+import { tubular } from "./tubular.js";
+
+/** The one table of kinds: what is in it exists everywhere, in the language, the engines, the drawings and the manual. */
+export const kinds: Readonly<Record<string, CompartmentKind>> = { stirred, tubular, junction, dead };

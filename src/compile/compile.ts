@@ -1,0 +1,103 @@
+import type { Network } from "../model/network.js";
+import { backEdges, stronglyConnected } from "../numerics/graph.js";
+import type { Problem } from "../problems/problem.js";
+import { collector, type Report } from "../problems/report.js";
+import { dimensions } from "../units/dimension.js";
+import { formatQuantity } from "../units/format.js";
+import { evaluateNames, kindValues } from "./evaluate.js";
+import { balanceFlows, type Flows } from "./flows.js";
+import type { Plant, PlantStream, Settings } from "./plant.js";
+import { spellOut } from "./spell.js";
+
+/**
+ * Balances a network and spells it out in primitive nodes.
+ * @param settings values to use in place of the file's, SI, by name (`bypass`, `feed.flow`)
+ * @returns no plant, and the reasons as problems, where values make a volume or flow impossible; never throws
+ */
+export function compile(network: Network, settings: Settings = {}): { plant: Plant | undefined; problems: Problem[] } {
+  const { report, problems } = collector();
+  const env = evaluateNames(network, settings);
+  const volumes = volumesOf(network, env, report);
+  const flows = balanceFlows(network, env, report, (q) => sayFlow(network, q));
+  exchangesPositive(network, env, report);
+  if (!flows || problems.length > 0) return { plant: undefined, problems };
+  return { plant: plantOf(network, env, volumes, flows), problems };
+}
+
+const sayFlow = (network: Network, flow: number) => formatQuantity(flow, network.units.unitFor(dimensions.flow), 6);
+
+function volumesOf(network: Network, env: Float64Array, report: Report): Float64Array {
+  const unit = network.units.unitFor(dimensions.volume);
+  return Float64Array.from(network.compartments, (c) => {
+    const volume = c.kind.volume(kindValues(c, env));
+    if (!(volume >= 0)) {
+      const at = c.values.volume?.at ?? c.at;
+      report("negative-volume", at, { name: c.name, value: formatQuantity(volume, unit, 6) });
+    }
+    return volume;
+  });
+}
+
+function exchangesPositive(network: Network, env: Float64Array, report: Report): void {
+  for (const c of network.compartments) {
+    for (const e of c.exchanges) {
+      const flow = e.flow.of(env);
+      if (!(flow >= 0)) {
+        report("negative-flow", e.flow.at, {
+          name: `between '${c.name}' and '${e.partner}'`,
+          value: sayFlow(network, flow),
+        });
+      }
+    }
+  }
+}
+
+function plantOf(network: Network, env: Float64Array, volumes: Float64Array, flows: Flows): Plant {
+  const spelled = spellOut(network, env, flows);
+  const { nodes, from, to, flow } = spelled;
+  const inflow = new Float64Array(nodes.length);
+  for (let k = 0; k < flow.length; k++) inflow[to[k]] += flow[k];
+  network.feeds.forEach((_, i) => {
+    inflow[i] += flows.through[i];
+  });
+  const total = volumes.reduce((sum, v) => sum + v, 0);
+  const active = nodes.reduce((sum, n, i) => sum + (inflow[i] > 0 ? n.volume : 0), 0);
+  const offset = network.feeds.length + network.compartments.length;
+  return {
+    network,
+    env,
+    nodes: nodes.map((n, i) => ({ ...n, inflow: inflow[i] })),
+    from,
+    to,
+    flow,
+    feeds: network.feeds.map((f, i) => ({ name: f.name, node: i, flow: flows.through[i] })),
+    outlets: network.outlets.map((o, i) => ({
+      name: o.name,
+      node: spelled.entry.get(o.name) as number,
+      flow: flows.through[offset + i],
+    })),
+    entry: spelled.entry,
+    exit: spelled.exit,
+    groups: stronglyConnected({ size: nodes.length, from, to }),
+    streams: streamsOf(network, env, flows),
+    volume: { total, active, dead: total - active },
+  };
+}
+
+function streamsOf(network: Network, env: Float64Array, flows: Flows): PlantStream[] {
+  const names = [...network.feeds, ...network.compartments, ...network.outlets].map((p) => p.name);
+  const edges = { size: names.length, from: flows.streams.map((s) => s.from), to: flows.streams.map((s) => s.to) };
+  const back = backEdges(edges, network.feeds.keys());
+  const streams = flows.streams.map((s, k): PlantStream => {
+    const { split } = s.stream;
+    const written = "value" in split ? split.value.at.source.text.slice(split.value.at.from, split.value.at.to) : split.is;
+    return { from: names[s.from], to: names[s.to], flow: s.flow, role: back[k] ? "recycle" : "forward", written };
+  });
+  const exchanges = network.compartments.flatMap((c) =>
+    c.exchanges.map((e): PlantStream => {
+      const written = e.flow.at.source.text.slice(e.flow.at.from, e.flow.at.to);
+      return { from: c.name, to: e.partner, flow: e.flow.of(env), role: "exchange", written };
+    }),
+  );
+  return [...streams, ...exchanges];
+}

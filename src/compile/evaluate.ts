@@ -1,0 +1,19 @@
+import type { Compartment, Network } from "../model/network.js";
+import type { Settings } from "./plant.js";
+
+/** Values of all names, SI, one slot each: the file's own, or those in `settings`. */
+export function evaluateNames(network: Network, settings: Settings = {}): Float64Array {
+  const env = new Float64Array(network.names.reduce((size, n) => Math.max(size, n.slot + 1), 0));
+  const bySlot = new Map(network.names.map((n) => [n.slot, n]));
+  for (const slot of network.order) {
+    const n = bySlot.get(slot);
+    if (n) env[slot] = settings[n.name] ?? n.value.of(env);
+  }
+  return env;
+}
+
+/** The quantity and whole-number keys of a compartment, evaluated. */
+export function kindValues(c: Compartment, env: ArrayLike<number>) {
+  const values = Object.fromEntries(Object.entries(c.values).map(([key, v]) => [key, v.of(env)]));
+  return { values, counts: c.counts };
+}

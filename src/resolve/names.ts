@@ -1,0 +1,149 @@
+import { parseValue } from "../expressions/parse.js";
+import type { Expression } from "../expressions/ast.js";
+import type { Named } from "../model/network.js";
+import type { Value } from "../model/value.js";
+import type { Report } from "../problems/report.js";
+import { child, entriesOf, type MapNode, type ScalarNode, textOf, type Tree } from "../read/tree.js";
+import type { Span } from "../text/source.js";
+import { type Dimension, dimensions, type DimensionName } from "../units/dimension.js";
+import { resolveValue, type Scope } from "./value.js";
+
+/** Words that cannot name anything: language.md, "Names". */
+const reserved = new Set(
+  "rest all t T pi gas-constant exp log log10 sqrt abs min max tanh step-up".split(" "),
+);
+
+/** Reports a name that breaks the rules; true where it is fine. */
+export function checkName(key: ScalarNode, report: Report): boolean {
+  if (reserved.has(key.text)) report("reserved-name", key.at, { name: key.text });
+  else if (!/^[A-Za-z][A-Za-z0-9_-]*$/.test(key.text)) report("bad-name", key.at, { name: key.text });
+  else return true;
+  return false;
+}
+
+interface Declared {
+  readonly name: string;
+  readonly role: Named["role"];
+  readonly at: Span;
+  readonly node: Tree | undefined;
+  readonly wanted: Dimension | "any";
+  readonly details: Tree | undefined;
+}
+
+/** The values of a network that have names, resolved in an order in which each needs only earlier ones. */
+export interface ResolvedNames {
+  readonly names: readonly Named[];
+  readonly order: readonly number[];
+  readonly scope: Scope;
+  readonly slots: ReadonlyMap<string, number>;
+}
+
+/** Constants, parameters and `feed.flow`s. Broken ones are reported and left out of `order`. */
+export function resolveNames(tree: MapNode, report: Report): ResolvedNames {
+  const declared = declare(tree, report);
+  const slots = new Map(declared.map((d, i) => [d.name, i]));
+  const found = new Map<string, Dimension>();
+  const scope: Scope = {
+    slot: (name) => slots.get(name),
+    dimension: (name) => found.get(name),
+    names: () => [...slots.keys()],
+  };
+  const names: Named[] = [];
+  const order: number[] = [];
+  for (const slot of dependencyOrder(declared, slots, report)) {
+    const d = declared[slot];
+    const value = resolveValue(d.node, d.wanted, scope, report);
+    if (!value) continue;
+    found.set(d.name, value.dimension);
+    names[slot] = { name: d.name, slot, role: d.role, at: d.at, value, ...details(d, value, scope, report) };
+    order.push(slot);
+  }
+  return { names: names.filter(Boolean), order, scope, slots };
+}
+
+function declare(tree: MapNode, report: Report): Declared[] {
+  const declared: Declared[] = [];
+  const seen = new Map<string, Declared>();
+  for (const [key, role] of [["constants", "constant"], ["parameters", "parameter"]] as const) {
+    for (const { key: name, value } of entriesOf(child(tree, key))) {
+      if (!checkName(name, report)) continue;
+      const earlier = seen.get(name.text);
+      if (earlier) {
+        report("name-taken", name.at, { name: name.text, by: `a ${earlier.role}` }, { at: earlier.at, says: "declared first here" });
+        continue;
+      }
+      const node = value.type === "map" ? child(value, "value") : value;
+      const entry: Declared = { name: name.text, role, at: name.at, node, wanted: "any", details: value.type === "map" ? value : undefined };
+      seen.set(name.text, entry);
+      declared.push(entry);
+    }
+  }
+  for (const { key: name, value } of entriesOf(child(tree, "feeds"))) {
+    declared.push({ name: `${name.text}.flow`, role: "feed-flow", at: name.at, node: child(value, "flow"), wanted: dimensions.flow, details: undefined });
+  }
+  return declared;
+}
+
+function details(d: Declared, value: Value, scope: Scope, report: Report): Pick<Named, "between" | "spacing" | "about"> {
+  const spacing = textOf(d.details, "spacing") === "log" ? "log" : "linear";
+  const about = textOf(d.details, "about");
+  const node = child(d.details, "between");
+  let between: [Value, Value] | undefined;
+  if (node?.type === "list" && node.items.length === 2) {
+    const [low, high] = node.items.map((item) => resolveValue(item, value.dimension, scope, report));
+    if (low && high) between = [low, high];
+  } else if (node) {
+    report("bounds-shape", node.at, { name: d.name });
+  }
+  return { between, spacing, about };
+}
+
+/** Slots in dependency order; circles are reported once each, printed, and left out. */
+function dependencyOrder(declared: readonly Declared[], slots: ReadonlyMap<string, number>, report: Report): number[] {
+  const needs = declared.map((d) => namesIn(d.node).flatMap((n) => slots.get(n) ?? []));
+  const state = new Uint8Array(declared.length); // 0 new, 1 open, 2 done, 3 in a circle
+  const order: number[] = [];
+  const path: number[] = [];
+  const visit = (i: number): boolean => {
+    if (state[i] === 2) return true;
+    if (state[i] === 3) return false;
+    if (state[i] === 1) {
+      const circle = path.slice(path.indexOf(i));
+      for (const j of circle) state[j] = 3;
+      const first = Math.min(...circle);
+      const turned = [...circle.slice(circle.indexOf(first)), ...circle.slice(0, circle.indexOf(first))];
+      report("circular-names", declared[first].node?.at ?? declared[first].at, {
+        circle: [...turned, first].map((j) => declared[j].name),
+      });
+      return false;
+    }
+    state[i] = 1;
+    path.push(i);
+    const good = needs[i].map(visit).every(Boolean);
+    path.pop();
+    if (state[i] === 1) state[i] = 2;
+    if (good && state[i] === 2) order.push(i);
+    return good && state[i] === 2;
+  };
+  declared.forEach((_, i) => visit(i));
+  return order;
+}
+
+function namesIn(node: Tree | undefined): string[] {
+  if (node?.type !== "scalar") return [];
+  const parsed = parseValue(node.text);
+  if (!("expression" in parsed)) return [];
+  const names: string[] = [];
+  const walk = (e: Expression): void => {
+    if (e.type === "name") names.push(e.name);
+    else if (e.type === "negate") walk(e.of);
+    else if (e.type === "binary") [e.left, e.right].forEach(walk);
+    else if (e.type === "call") e.args.forEach(walk);
+  };
+  walk(parsed.expression);
+  return names;
+}
+
+/** Dimension by its name, or names. */
+export const dimensionsOf = (name: DimensionName | readonly DimensionName[] | "any"): Dimension | readonly Dimension[] | "any" =>
+  name === "any" ? "any" : typeof name === "string" ? dimensions[name] : name.map((n) => dimensions[n]);

@@ -1,0 +1,98 @@
+import { kinds } from "../compartments/index.js";
+import type { Compartment, Feed, Network, Outlet } from "../model/network.js";
+import type { Value } from "../model/value.js";
+import type { Report } from "../problems/report.js";
+import { child, entriesOf, itemsOf, type MapNode, textOf } from "../read/tree.js";
+import { resolveChecks } from "./checks.js";
+import { checkName, dimensionsOf, resolveNames } from "./names.js";
+import { resolveRequirements } from "./requirements.js";
+import { resolveExchanges, resolveStreams } from "./streams.js";
+import { unitBook } from "./unit-book.js";
+import { resolveValue, type Scope } from "./value.js";
+
+/**
+ * Binds every name and value of a network document. Problems go to `report`; what could not be bound is left out, so
+ * the result is to be used further only where no error was reported.
+ * @param tree a document that has passed the shape check
+ */
+export function resolveNetwork(tree: MapNode, path: string, report: Report): Network {
+  const { names, order, scope } = resolveNames(tree, report);
+  const feeds = entriesOf(child(tree, "feeds")).flatMap(({ key, value }): Feed[] => {
+    checkName(key, report);
+    const named = names.find((n) => n.role === "feed-flow" && n.name === `${key.text}.flow`);
+    const streams = resolveStreams(child(value, "to"), key.text, scope, report);
+    return named ? [{ name: key.text, at: key.at, flow: named.value, flowSlot: named.slot, streams }] : [];
+  });
+  const compartments = entriesOf(child(tree, "compartments")).flatMap(({ key, value }) => {
+    checkName(key, report);
+    return value.type === "map" ? (resolveCompartment(key.text, key.at, value, scope, report) ?? []) : [];
+  });
+  const outlets = itemsOf(child(tree, "outlets")).flatMap((item): Outlet[] => {
+    if (item.type !== "scalar") return [];
+    checkName(item, report);
+    return [{ name: item.text, at: item.at }];
+  });
+  const { requires, requireNames } = resolveRequirements(child(tree, "requires"), scope, report);
+  const checks = resolveChecks(child(tree, "checks"), scope, report);
+  const title = child(tree, "network");
+  const values = valuesOf(feeds, names.map((n) => n.value), compartments);
+  return {
+    title: textOf(tree, "network") ?? "",
+    at: title?.at ?? tree.at,
+    path,
+    notes: textOf(tree, "notes"),
+    names,
+    order,
+    feeds,
+    compartments,
+    outlets,
+    requires,
+    checks,
+    used: new Set([...values, ...names.flatMap((n) => n.between ?? [])].flatMap((v) => v.uses).concat(requireNames)),
+    units: unitBook(values, feeds[0]?.flow),
+  };
+}
+
+function resolveCompartment(
+  name: string,
+  at: Compartment["at"],
+  node: MapNode,
+  scope: Scope,
+  report: Report,
+): Compartment | undefined {
+  const kind = kinds[textOf(node, "kind") ?? ""];
+  if (!kind) return undefined; // the shape check has said so
+  const values: Record<string, Value> = {};
+  const counts: Record<string, number> = {};
+  for (const [key, { shape }] of Object.entries(kind.keys)) {
+    const written = child(node, key);
+    if (!written) continue;
+    if (shape.is === "quantity") {
+      const value = resolveValue(written, dimensionsOf(shape.dimension), scope, report);
+      if (value) values[key] = value;
+    } else if (shape.is === "whole" && written.type === "scalar") {
+      counts[key] = Number(written.text);
+    }
+  }
+  return {
+    name,
+    at,
+    kind,
+    values,
+    counts,
+    streams: resolveStreams(child(node, "to"), name, scope, report),
+    exchanges: resolveExchanges(child(node, "exchange"), scope, report),
+    toAt: child(node, "to")?.at ?? at,
+  };
+}
+
+/** All values in file order of their sections: the first unit of a dimension is the one to print in. */
+function valuesOf(feeds: readonly Feed[], named: readonly Value[], compartments: readonly Compartment[]): Value[] {
+  const streams = [...feeds, ...compartments].flatMap((n) => n.streams);
+  return [
+    ...named,
+    ...compartments.flatMap((c) => Object.values(c.values)),
+    ...compartments.flatMap((c) => c.exchanges.map((e) => e.flow)),
+    ...streams.flatMap((s) => ("value" in s.split ? [s.split.value] : [])),
+  ];
+}

@@ -1,0 +1,49 @@
+import type { UnitBook } from "../model/network.js";
+import type { Value } from "../model/value.js";
+import { dimensionKey, dimensions } from "../units/dimension.js";
+import { parseUnit } from "../units/parse.js";
+import type { Unit } from "../units/unit.js";
+
+const known = (text: string): Unit => {
+  const unit = parseUnit(text);
+  if (!("factor" in unit)) throw new Error(`no unit ${text}`);
+  return unit;
+};
+
+/** What people expect where a file uses no unit of a dimension. */
+const usual: Unit[] = ["%", "L", "L/min", "g", "g/L", "mol/L", "mol", "min", "1/min", "K", "kJ/mol"].map(known);
+
+/**
+ * The units that a document uses, first come first kept, for printing results as the site writes them.
+ * @param values in file order
+ * @param flow   the value whose unit tells the unit of time (the first feed's flow)
+ */
+export function unitBook(values: readonly (Value | undefined)[], flow: Value | undefined): UnitBook {
+  const book = new Map<string, Unit>();
+  for (const v of values) {
+    if (v?.unit && !book.has(dimensionKey(v.unit.dimension))) book.set(dimensionKey(v.unit.dimension), v.unit);
+  }
+  const time = timeOf(flow?.unit) ?? book.get(dimensionKey(dimensions.time)) ?? known("min");
+  for (const unit of [time, ...usual]) {
+    if (!book.has(dimensionKey(unit.dimension))) book.set(dimensionKey(unit.dimension), unit);
+  }
+  return {
+    time,
+    unitFor: (dimension) =>
+      book.get(dimensionKey(dimension as Unit["dimension"])) ?? {
+        name: "SI",
+        factor: 1,
+        offset: 0,
+        dimension: dimension as Unit["dimension"],
+      },
+  };
+}
+
+/** The time in a flow unit: min of L/min, d of MGD. */
+function timeOf(flow: Unit | undefined): Unit | undefined {
+  if (!flow) return undefined;
+  const after = flow.name.split("/").at(-1);
+  const unit = after && after !== flow.name ? parseUnit(after) : undefined;
+  if (unit && "factor" in unit && dimensionKey(unit.dimension) === dimensionKey(dimensions.time)) return unit;
+  return /gpm/i.test(flow.name) ? known("min") : /d$/i.test(flow.name) ? known("d") : undefined;
+}
