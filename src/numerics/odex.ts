@@ -120,7 +120,7 @@ export function integrateByOdex(p: Stretch, y: Float64Array, output: (y: Float64
     if (!(thrown instanceof Halted)) throw thrown;
     halt = thrown.why;
   }
-  if (halt !== undefined) return { t: time(accepted), halt, steps, rejected, rhs: evaluations };
+  if (halt !== undefined) return { t: p.from + accepted * span, halt, steps, rejected, rhs: evaluations };
   for (; next < p.outputs.length; next++) output(y);
   return { t: p.to, steps, rejected, rhs: evaluations };
 }
