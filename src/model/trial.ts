@@ -1,6 +1,10 @@
+import type { ClockFormat } from "../read/clock.js";
+import type { Series } from "../read/series.js";
 import type { Span } from "../text/source.js";
 import type { Unit } from "../units/unit.js";
 import type { Value } from "./value.js";
+
+export type { Series } from "../read/series.js";
 
 /** One tracer test as declared. All numbers SI unless said; the raw files are not in it, only where they are. */
 export interface Trial {
@@ -15,6 +19,8 @@ export interface Trial {
   readonly with: ReadonlyMap<string, Value>;
   readonly injections: readonly Injection[];
   readonly readings: readonly Reading[];
+  /** How the trial's clock is written, for printing its times; undefined where times are elapsed. */
+  readonly clock?: ClockFormat | undefined;
 }
 
 /** What went in. `start` is in seconds on the trial's clock (that of its readings), `lasting` in seconds (0: at once). */
@@ -26,6 +32,7 @@ export interface Injection {
   readonly form:
     | { readonly is: "pulse"; readonly amount: Value }
     | { readonly is: "step"; readonly level: Value; readonly from: Value | undefined }
+    /** A measured inlet as concentration (SI) on the trial's clock: calibrated, left-out points gone, line delay taken off. */
     | { readonly is: "signal"; readonly table: Series };
 }
 
@@ -57,17 +64,4 @@ export interface Calibration {
   readonly rise: number;
   readonly per: number;
   readonly perUnit: Unit;
-}
-
-/** A column pair of a table: s and SI value, with the file's own row number for each point. */
-export interface Series {
-  readonly file: string;
-  readonly at: Span;
-  readonly time: Float64Array;
-  readonly value: Float64Array;
-  readonly row: Int32Array;
-  readonly timeUnit: Unit;
-  readonly valueUnit: Unit;
-  /** Rows whose value was a declared word for missing, or empty. */
-  readonly missing: number;
 }

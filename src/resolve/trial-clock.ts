@@ -1,0 +1,68 @@
+import type { Report } from "../problems/report.js";
+import { type ClockFormat, guessClock } from "../read/clock.js";
+import { showTime } from "../read/series.js";
+import type { Tree } from "../read/tree.js";
+import { dimensions } from "../units/dimension.js";
+import type { Unit } from "../units/unit.js";
+import type { ResolvedTable } from "./trial-table.js";
+import { emptyScope, resolveValue } from "./value.js";
+
+/**
+ * The one clock that all tables of a trial share. Elapsed times are kept as they are; clock times count from midnight
+ * of the first day.
+ */
+export interface TrialClock {
+  /** How times are written; undefined where they are elapsed. */
+  readonly format: ClockFormat | undefined;
+  /** First and last time of all tables, s; 0 where there is none. */
+  readonly first: number;
+  readonly last: number;
+  /** Seconds to take off what a table's own format reads. */
+  originOf(format: ClockFormat | undefined): number;
+  /** A time written in the document: as the tables write it, or elapsed since their first row. Reports. */
+  time(node: Tree, report: Report): number | undefined;
+  show(t: number): string;
+}
+
+/** Builds it from the tables that could be read. */
+export function trialClock(tables: readonly ResolvedTable[]): TrialClock {
+  const dated = tables.filter(({ clock }) => clock?.dated);
+  const earliest = Math.min(...dated.map(({ series }) => series.time[0]));
+  const origin = dated.length > 0 ? Math.floor(earliest / 86_400) * 86_400 : 0;
+  const originOf = (format: ClockFormat | undefined): number => (format?.dated ? origin : 0);
+  const ends = tables.map(({ series, clock }) => {
+    const shift = originOf(clock);
+    return [series.time[0] - shift, series.time[series.time.length - 1] - shift];
+  });
+  const first = ends.length > 0 ? Math.min(...ends.map(([a]) => a)) : 0;
+  const last = ends.length > 0 ? Math.max(...ends.map(([, b]) => b)) : 0;
+  const formats = tables.flatMap(({ clock }) => clock ?? []);
+  const format = formats[0];
+  const unit: Unit | undefined = tables[0]?.series.timeUnit;
+  const show = (t: number): string => showTime(t + originOf(format), format, unit);
+  return {
+    format,
+    first,
+    last,
+    originOf,
+    show,
+    time(node, report) {
+      if (node.type !== "scalar") return undefined;
+      for (const f of formats) {
+        const t = f.read(node.text);
+        if (t !== undefined) return t - originOf(f);
+      }
+      const guess = guessClock(node.text);
+      const isElapsed = /^[+-]?[\d.]+(?:[eE][+-]?\d+)?(?: \S.*)?$/.test(node.text.trim());
+      if (guess !== undefined && guess !== "ambiguous" && (format !== undefined || tables.length === 0)) {
+        const t = guess.read(node.text);
+        if (t !== undefined) return t - originOf(guess);
+      } else if (guess === undefined && isElapsed) {
+        const value = resolveValue(node, dimensions.time, emptyScope, report)?.of([]);
+        return value === undefined ? undefined : value + (format ? first : 0);
+      }
+      report("start-unclear", node.at, { text: node.text, example: show(first) });
+      return undefined;
+    },
+  };
+}

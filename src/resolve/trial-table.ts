@@ -1,0 +1,110 @@
+import type { Report } from "../problems/report.js";
+import { clockFormat } from "../read/clock.js";
+import type { CsvOptions } from "../read/csv.js";
+import { decodeText } from "../read/decode.js";
+import { beside } from "../read/paths.js";
+import { type ReadSeries, readSeries } from "../read/series.js";
+import { child, itemsOf, type MapNode, type Tree, textOf } from "../read/tree.js";
+import { dimensions, sameDimension } from "../units/dimension.js";
+import { parseUnit } from "../units/parse.js";
+import type { Unit } from "../units/unit.js";
+import { resolveUnit } from "./detector.js";
+
+/** What gives the text or the bytes of a file that a document names; undefined where there is none. */
+export interface Files {
+  read(path: string): string | Uint8Array | undefined;
+}
+
+/** Where the table of a reading is, how its clock is written, and what it holds. */
+export interface ResolvedTable extends ReadSeries {
+  readonly valueUnit: Unit;
+}
+
+/**
+ * Reads the table that `file`, `time`, `value` and `csv` of a reading or a measured inlet name.
+ * @param path of the document, that `file` is relative to
+ * @returns undefined where something is wrong; reported
+ */
+export function resolveTable(
+  node: MapNode,
+  path: string,
+  anyWord: boolean,
+  files: Files,
+  report: Report,
+): ResolvedTable | undefined {
+  const fileNode = child(node, "file");
+  const file = textOf(node, "file");
+  if (!fileNode || file === undefined) return undefined;
+  const full = beside(path, file);
+  const content = files.read(full);
+  const time = column(child(node, "time"), fileNode);
+  const value = column(child(node, "value"), fileNode);
+  const format = resolveFormat(child(node, "time"), report);
+  const timeUnit = resolveUnit(child(node, "time"), "unit", false, report);
+  const valueUnit = resolveUnit(child(node, "value"), "unit", anyWord, report);
+  const units = checkUnits(node, timeUnit, valueUnit, report);
+  if (content === undefined) report("file-missing", fileNode.at, { file });
+  if (content === undefined || !time || !value || !valueUnit || format === "faulty" || !units) return undefined;
+  const spec = {
+    file: full,
+    at: fileNode.at,
+    time: { ...time, unit: timeUnit },
+    format,
+    value: { ...value, unit: valueUnit },
+    csv: csvOptions(child(node, "csv")),
+    shownTime: minute,
+  };
+  const read = readSeries({ path: full, text: decodeText(content) }, spec, report);
+  return read && { ...read, valueUnit };
+}
+
+const minute: Unit = { name: "min", factor: 60, offset: 0, dimension: dimensions.time };
+
+function column(node: Tree | undefined, file: Tree): { column: string | number; at: Tree["at"] } | undefined {
+  const name = child(node, "column");
+  if (name?.type !== "scalar") return undefined;
+  const isPosition = name.plain && /^\d+$/.test(name.text);
+  return { column: isPosition ? Number(name.text) : name.text.trim(), at: name.at ?? file.at };
+}
+
+function resolveFormat(time: Tree | undefined, report: Report): ReturnType<typeof clockFormat> | "faulty" {
+  const text = textOf(time, "format");
+  const node = child(time, "format");
+  if (!node || text === undefined) return undefined;
+  const format = clockFormat(text);
+  if (!format) report("bad-format", node.at, { format: text });
+  return format ?? "faulty";
+}
+
+/** Units that are there when they must be, and of a time for times. */
+function checkUnits(node: MapNode, time: Unit | undefined, value: Unit | undefined, report: Report): boolean {
+  const before = { time: child(node, "time"), value: child(node, "value") };
+  const name = (part: "time" | "value"): string => textOf(before[part], "column") ?? part;
+  if (before.value && !value && !child(before.value, "unit"))
+    report("unit-missing", before.value.at, { column: name("value") });
+  if (!time) return child(before.time, "unit") === undefined;
+  const at = child(before.time, "unit")?.at ?? node.at;
+  if (child(before.time, "format")) report("unit-and-format", at, { column: name("time") });
+  else if (sameDimension(time.dimension, dimensions.time)) return true;
+  else report("table-unit", at, { unit: time.name, nearest: "min" });
+  return false;
+}
+
+function csvOptions(node: Tree | undefined): CsvOptions {
+  const separator = textOf(node, "separator");
+  const decimal = textOf(node, "decimal");
+  const header = textOf(node, "header");
+  const missing = itemsOf(child(node, "missing")).flatMap((m) => (m.type === "scalar" ? [m.text] : []));
+  return {
+    ...(separator === undefined ? {} : { separator: /^(tab|\\t)$/i.test(separator) ? "\t" : separator }),
+    ...(decimal === "comma" || decimal === "point" ? { decimal } : {}),
+    ...(header === undefined ? {} : { header: Number(header) }),
+    missing,
+  };
+}
+
+/** A unit by its name where it is surely one. */
+export const knownUnit = (text: string): Unit | undefined => {
+  const unit = parseUnit(text);
+  return "factor" in unit ? unit : undefined;
+};

@@ -1,0 +1,91 @@
+import type { Trial } from "../model/trial.js";
+import type { Value } from "../model/value.js";
+import type { Report } from "../problems/report.js";
+import { child, entriesOf, itemsOf, type MapNode, type Tree, textOf } from "../read/tree.js";
+import { type Dimension, dimensions } from "../units/dimension.js";
+import type { Unit } from "../units/unit.js";
+import { resolveInjection, signalNode } from "./injection.js";
+import { resolveReading } from "./reading.js";
+import { aboveZero } from "./sign.js";
+import { type TrialClock, trialClock } from "./trial-clock.js";
+import { type Files, knownUnit, type ResolvedTable, resolveTable } from "./trial-table.js";
+import { emptyScope, resolveValue } from "./value.js";
+
+export type { Files } from "./trial-table.js";
+
+/**
+ * A trial document with its tables read, all on one clock, in SI.
+ * @param tree  a document that has passed the shape check
+ * @param path  of the document; the files it names are relative to it
+ * @returns undefined where something is wrong that leaves no trial; reported, as is everything else
+ */
+export function resolveTrial(tree: MapNode, path: string, files: Files, report: Report): Trial | undefined {
+  const readingNodes = mapsOf(child(tree, "readings"));
+  const injectionNodes = mapsOf(child(tree, "injection"));
+  const free = readingNodes.length > 0 && readingNodes.every((node) => textOf(node, "scale") === "free");
+  const table = (node: MapNode | undefined): ResolvedTable | undefined => {
+    const anyWord = child(node, "calibration") !== undefined || textOf(node, "scale") === "free" || free;
+    return node && child(node, "file") ? resolveTable(node, path, anyWord, files, report) : undefined;
+  };
+  const readTables = readingNodes.map(table);
+  const inletTables = injectionNodes.map((node) => table(signalNode(node)));
+  const clock = trialClock([...readTables, ...inletTables].filter((t) => t !== undefined));
+
+  const onClock = (t: ResolvedTable | undefined): ResolvedTable | undefined => t && moved(t, -clock.originOf(t.clock));
+  const injections = injectionNodes.map((node, i) =>
+    resolveInjection(node, onClock(inletTables[i]), clock, free, report),
+  );
+  const start = injections[0]?.start ?? 0;
+  const planned = plannedUnit(injections[0]?.form.is === "pulse" ? injections[0].form.amount : undefined);
+  const readings = readingNodes.map((node, i) => {
+    const missing = child(node, "file") !== undefined && readTables[i] === undefined;
+    const own = afterMidnight(onClock(readTables[i]), start, clock);
+    const reading = resolveReading(node, own, clock, planned, report);
+    return missing ? undefined : reading;
+  });
+  const title = child(tree, "trial");
+  const flows = values(child(tree, "flows"), dimensions.flow, report);
+  for (const flow of flows.values()) aboveZero("the flow of a feed", flow, true, report);
+  const whole = [...injections, ...readings].every((part) => part !== undefined);
+  if (!whole) return undefined;
+  return {
+    title: textOf(tree, "trial") ?? "",
+    at: title?.at ?? tree.at,
+    path,
+    vessel: textOf(tree, "vessel"),
+    flows,
+    with: values(child(tree, "with"), "any", report),
+    injections: injections.filter((part) => part !== undefined),
+    readings: readings.filter((part) => part !== undefined),
+    ...(clock.format ? { clock: clock.format } : {}),
+  };
+}
+
+const mapsOf = (node: Tree | undefined): MapNode[] =>
+  itemsOf(node).flatMap((item) => (item.type === "map" ? [item] : []));
+
+function values(node: Tree | undefined, wanted: Dimension | "any", report: Report): Map<string, Value> {
+  const found = new Map<string, Value>();
+  for (const { key, value } of entriesOf(node)) {
+    const resolved = resolveValue(value, wanted, emptyScope, report);
+    if (resolved) found.set(key.text, resolved);
+  }
+  return found;
+}
+
+function moved(table: ResolvedTable, by: number): ResolvedTable {
+  return by === 0 ? table : { ...table, series: { ...table.series, time: table.series.time.map((t) => t + by) } };
+}
+
+/** A clock without dates whose log ends more than half a day before the injection was started on the next day. */
+function afterMidnight(table: ResolvedTable | undefined, start: number, clock: TrialClock): ResolvedTable | undefined {
+  if (!table?.clock || table.clock.dated || clock.format?.dated) return table;
+  const last = table.series.time[table.series.time.length - 1];
+  return last < start - 43_200 ? moved(table, 86_400) : table;
+}
+
+/** The unit of concentration that a planned reading is in: that of the dose in a liter. */
+function plannedUnit(amount: Value | undefined): Unit {
+  const perLiter = amount?.unit && knownUnit(`${amount.unit.name}/L`);
+  return perLiter ?? { name: "g/L", factor: 1, offset: 0, dimension: dimensions["mass concentration"] };
+}
