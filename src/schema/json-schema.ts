@@ -85,9 +85,10 @@ export function jsonSchema(shape: Shape): JsonSchema {
   }
 }
 
-/** `if`, `then`, `else`. (Spelled as entries: an object with a `then` of its own would look like a promise.) */
-const when = (test: JsonSchema, yes: JsonSchema, no?: JsonSchema): JsonSchema =>
-  Object.fromEntries<Json>([["if", test], ["then", yes], ...(no ? [["else", no] as [string, Json]] : [])]);
+const branches = ["if", "then", "else"];
+
+/** `if`, `then`, `else`. (Zipped: an object with a `then` written into it would look like a promise.) */
+const when = (...schemas: JsonSchema[]): JsonSchema => Object.fromEntries(schemas.map((s, i) => [branches[i], s]));
 
 const notYet = "Part of the language, not in this version of backmix";
 

@@ -1,0 +1,51 @@
+import { type Document, parseDocument } from "yaml";
+import type { Report } from "../problems/report.js";
+import type { Source } from "../text/source.js";
+import { deepest, growTree } from "./grow.js";
+import { reportSyntax } from "./syntax.js";
+import { reportTraps } from "./traps.js";
+import type { MapNode } from "./tree.js";
+
+const megabyte = 1024 * 1024;
+const largest = 10 * megabyte;
+
+/**
+ * The tree of a YAML 1.2 text, every node with its place; scalars keep their text (a number is a string as typed).
+ * @returns undefined where the text is no YAML, or no map; what is wrong is reported, never thrown
+ */
+export function readYaml(source: Source, report: Report): MapNode | undefined {
+  const start = { source, from: 0, to: 0 };
+  if (source.text.length > largest) {
+    report("file-too-large", start, { megabytes: Math.ceil(source.text.length / megabyte) });
+    return undefined;
+  }
+  const document = parse(source);
+  if (document === "too deep") {
+    report("too-deep", start, { limit: deepest });
+    return undefined;
+  }
+  if (document.errors.length > 0) {
+    reportSyntax(source, document.errors, report);
+    return undefined;
+  }
+  const tree = growTree(source, document, report);
+  if (tree === undefined) return undefined;
+  if (tree.type !== "map") {
+    if (tree.type === "scalar" && tree.empty) report("empty-file", start, {});
+    else report("not-a-map", tree.at, { found: tree.type === "list" ? "a list" : "a single value" });
+    return undefined;
+  }
+  reportTraps(tree, report);
+  return tree;
+}
+
+/** Failsafe schema: every scalar stays text, and what a number is decides the language, not YAML. */
+function parse(source: Source): Document.Parsed | "too deep" {
+  try {
+    return parseDocument(source.text, { schema: "failsafe", uniqueKeys: false, prettyErrors: false });
+  } catch (e) {
+    // The parser recurses: what overflows the stack is nested beyond any use.
+    if (e instanceof RangeError) return "too deep";
+    throw e;
+  }
+}
