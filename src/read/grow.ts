@@ -33,7 +33,8 @@ export function growTree(source: Source, document: Document.Parsed, report: Repo
     failed: false,
   };
   const tree = grow(document.contents, growth, 0, 0);
-  for (const [name, node] of growth.anchors) if (!growth.used.has(name)) unusedAnchor(name, node, growth);
+  if (!growth.failed)
+    for (const [name, node] of growth.anchors) if (!growth.used.has(name)) unusedAnchor(name, node, growth);
   return growth.failed ? undefined : tree;
 }
 

@@ -22,7 +22,7 @@ function reportLoneKey(map: MapNode, entry: Entry, before: Entry | undefined, re
   const glued = /^([A-Za-z][\w-]*):(\S.*)$/s.exec(key.text);
   if (glued) {
     const corrected = correctedLine(entry, key.at.from, key.at.to, `${glued[1]}: ${glued[2]}`);
-    report("missing-space", key.at, { key: key.text, corrected });
+    report("colon-without-space", key.at, { key: key.text, corrected });
     return;
   }
   if (!before || before.value.type !== "scalar" || !before.value.plain || before.value.empty) return;

@@ -1,4 +1,4 @@
-import type { KeyShape, Shape } from "./shape.js";
+import { decidingShape, type KeyShape, type Shape } from "./shape.js";
 
 /**
  * The shape of a change to a document of the given shape: nothing is required, and `null` may stand anywhere inside to remove what is there.
@@ -15,7 +15,7 @@ export function partial(shape: Shape): Shape {
       const kinds = Object.entries(shape.of).filter(([, v]) => !v.later);
       for (const [, variant] of kinds)
         for (const key in variant.keys) if (!keys[key] || keys[key].later) keys[key] = variant.keys[key];
-      keys[shape.by] = { ...keys[shape.by], shape: { is: "choice", of: kinds.map(([kind]) => kind) } };
+      keys[shape.by] = { ...keys[shape.by], shape: decidingShape(shape) };
       return { is: "record", keys: partialKeys(keys) };
     }
     case "either":

@@ -6,7 +6,8 @@ export type Shape =
   /** A number with a unit or an expression; `dimension` one or several that are right there. */
   | { readonly is: "quantity"; readonly dimension: DimensionName | readonly DimensionName[] | "any" }
   | { readonly is: "whole"; readonly atLeast: number }
-  | { readonly is: "choice"; readonly of: readonly string[] }
+  /** `later`: words of the language that this version refuses. */
+  | { readonly is: "choice"; readonly of: readonly string[]; readonly later?: readonly string[] }
   /** A name of the author's own, used as a value; dots reach into parts and repeats. */
   | { readonly is: "name" }
   | RecordShape
@@ -80,4 +81,10 @@ export function sortOf(shape: Shape): Sort | undefined {
     default:
       return "value";
   }
+}
+
+/** What may stand at the key that decides a variant. */
+export function decidingShape({ of }: Extract<Shape, { is: "variant" }>): Extract<Shape, { is: "choice" }> {
+  const words = Object.keys(of);
+  return { is: "choice", of: words.filter((w) => !of[w].later), later: words.filter((w) => of[w].later) };
 }

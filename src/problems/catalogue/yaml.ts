@@ -108,7 +108,7 @@ export const yamlEntries = {
     says: (d) => `inside braces the comma cuts '${d.text}' in two`,
     fix: (d) => `write \`${d.corrected}\`, or give the value a line of its own`,
   }),
-  "missing-space": entry<{ key: string; corrected: string }>({
+  "colon-without-space": entry<{ key: string; corrected: string }>({
     severity: "error",
     says: (d) => `without a space after the colon '${d.key}' is one word, not a key with a value`,
     fix: (d) => `write \`${d.corrected}\``,
