@@ -1,13 +1,5 @@
+import { gradient, type LinearModel, promised } from "./linear-model.js";
 import { svd } from "./svd.js";
-
-/** A linear least-squares model of the residuals about p, compressed to n rows: |c + R s| for a step s. */
-export interface LinearModel {
-  readonly n: number;
-  /** n x n, row-major. */
-  readonly r: Float64Array;
-  /** First n entries of Q' residuals. */
-  readonly c: Float64Array;
-}
 
 export interface Box {
   readonly p: Float64Array;
@@ -23,13 +15,6 @@ export interface TrustStep {
   readonly promised: number;
   /** |D step|. */
   readonly length: number;
-}
-
-/** R' c, the gradient of half the sum of squares. */
-export function gradient({ n, r, c }: LinearModel): Float64Array {
-  const g = new Float64Array(n);
-  for (let i = 0; i < n; i++) for (let j = 0; j < n; j++) g[j] += r[i * n + j] * c[i];
-  return g;
 }
 
 /** The parameters that may move: not at a bound, or with the downhill direction leading away from it. */
@@ -71,17 +56,6 @@ export function trustStep(model: LinearModel, box: Box, d: Float64Array, radius:
     free = free.filter((j) => !stopped.includes(j));
   }
   return { step, damping, promised: promised(model, step), length: scaledLength(step, d) };
-}
-
-/** |c|^2 - |c + R s|^2, without cancellation. */
-export function promised({ n, r, c }: LinearModel, s: Float64Array): number {
-  let fall = 0;
-  for (let i = 0; i < n; i++) {
-    let w = 0;
-    for (let j = 0; j < n; j++) w += r[i * n + j] * s[j];
-    fall -= w * (2 * c[i] + w);
-  }
-  return fall;
 }
 
 export function scaledLength(s: Float64Array, d: Float64Array): number {
