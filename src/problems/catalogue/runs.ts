@@ -1,1 +1,103 @@
-export const runEntries = {} as const;
+import { entry } from "../problem.js";
+
+/** What can be wrong with a fit before it runs, and what a reader of its result must know. */
+export const runEntries = {
+  "unknown-free": entry({
+    severity: "error",
+    says: (d: { name: string; nearest: string | undefined; names: readonly string[] }) =>
+      `'${d.name}' is no parameter of this network${d.nearest ? `; did you mean '${d.nearest}'?` : ""}`,
+    fix: (d) =>
+      d.names.length > 0 ? `free one of ${d.names.join(", ")}` : "list what a fit may move under `parameters:` first",
+  }),
+  "nothing-to-fit": entry({
+    severity: "error",
+    says: (_: Record<never, never>) => "the network has no parameters, so there is nothing to fit",
+    fix: "move what is not known from `constants:` to `parameters:`, with a value and bounds: `riser: {value: 150 L, between: [5 L, 480 L]}`",
+  }),
+  "no-points": entry({
+    severity: "error",
+    says: (d: { trials: number }) =>
+      d.trials === 0 ? "there is no trial to fit to" : "no trial has a reading with points that are not left out",
+    fix: "give at least one reading a `file:` with times and values",
+  }),
+  "too-few-points": entry({
+    severity: "error",
+    says: (d: { points: number; unknowns: number }) =>
+      `${d.points} points cannot fix ${d.unknowns} unknowns (parameters, baselines and scales)`,
+    fix: "free fewer parameters, fit more trials at once, or take baseline and scale as known",
+  }),
+  "no-start": entry({
+    severity: "error",
+    says: (d: { tried: number }) => `none of ${d.tried} starting points inside the bounds makes a possible vessel`,
+    fix: "check bounds and `requires:`: at the file's own values every volume and flow must be positive and every requirement must hold",
+  }),
+  "fit-not-converged": entry({
+    severity: "warning",
+    says: (d: { evaluations: number }) =>
+      `the fit did not settle in ${d.evaluations} evaluations; these are the best values found`,
+    fix: "start nearer, narrow the bounds, or free fewer parameters",
+  }),
+  "fit-cancelled": entry({
+    severity: "warning",
+    says: (d: { evaluations: number }) =>
+      `the fit was stopped after ${d.evaluations} evaluations; these are the best values found`,
+    fix: "let it run to its end",
+  }),
+  "parameter-at-bound": entry({
+    severity: "warning",
+    says: (d: { name: string; side: "lower" | "upper"; bound: string }) =>
+      `${d.name} ended at its ${d.side} bound, ${d.bound}: the data would take it further`,
+    fix: (d) =>
+      `widen the bounds of ${d.name} if physics allows, else leave out the part of the network that it describes`,
+  }),
+  "cannot-tell": entry({
+    severity: "warning",
+    says: (d: { names: readonly string[] }) =>
+      d.names.length === 1
+        ? `the data say nothing about ${d.names[0]}: the curve is the same whatever it is`
+        : `the data cannot tell ${d.names[0]} from ${joined(d.names.slice(1))}: moved together they leave the curve as it is`,
+    fix: (d) =>
+      d.names.length === 1
+        ? `keep ${d.names[0]} at a known value, or take a reading that it acts on`
+        : `keep one of them at a known value, or add a trial at another flow or a reading at another place`,
+  }),
+  "strongly-correlated": entry({
+    severity: "warning",
+    says: (d: { a: string; b: string; r: number }) =>
+      `${d.a} and ${d.b} can hardly be told apart (correlation ${d.r.toFixed(3).replace("-", "−")})`,
+    fix: "add a trial at another flow or a reading at another place, or keep one of the two at a known value",
+  }),
+  "wide-interval": entry({
+    severity: "warning",
+    says: (d: { name: string }) => `the data leave ${d.name} anywhere between its bounds`,
+    fix: (d) => `do not quote ${d.name}; keep it at a known value or measure longer, denser or at another place`,
+  }),
+  "interval-cut": entry({
+    severity: "warning",
+    says: (d: { name: string; side: "lower" | "upper" | "lower and upper" }) =>
+      `the interval of ${d.name} is cut at its ${d.side} bound`,
+    fix: (d) => `read the interval of ${d.name} as one-sided, or widen its bounds if physics allows`,
+  }),
+  "residuals-correlated": entry({
+    severity: "warning",
+    says: (d: { lag1: number; points: number; effective: number }) =>
+      `neighbouring residuals hang together (correlation ${d.lag1.toFixed(2)}): ${d.points} points say as much as ${d.effective.toFixed(0)} independent ones`,
+    fix: "intervals are widened for it; look for what the model lacks, or for drift and smoothing in the logger",
+  }),
+  "several-optima": entry({
+    severity: "warning",
+    says: (d: { others: number }) =>
+      `${d.others === 1 ? "another set of values fits" : `${d.others} other sets of values fit`} the data almost as well`,
+    fix: "look at the other optima before using the values; another trial or a known value would decide between them",
+  }),
+  "scale-not-positive": entry({
+    severity: "warning",
+    says: (d: { key: string }) =>
+      `the best scale of '${d.key}' is not positive: this reading does not follow the model at all`,
+    fix: "check times, injection and place of the reading; `scale: known` if the amount is trusted",
+  }),
+};
+
+function joined(names: readonly string[]): string {
+  return names.length < 2 ? (names[0] ?? "") : `${names.slice(0, -1).join(", ")} and ${names[names.length - 1]}`;
+}

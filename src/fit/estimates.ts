@@ -1,0 +1,121 @@
+import { studentTQuantile } from "../numerics/distributions.js";
+import { type Autocorrelation, autocorrelationOf } from "./autocorrelation.js";
+import { type LinearTheory, linearTheory } from "./covariance.js";
+import { constantSlope, fullJacobian } from "./jacobian.js";
+import type { Estimate, FittedParameter, Matrix, Nuisance } from "./result.js";
+import type { Settled } from "./settle.js";
+
+/** Estimates with their uncertainty, and what the findings need to know of it. */
+export interface Estimates {
+  readonly parameters: readonly FittedParameter[];
+  readonly nuisance: Readonly<Record<string, Nuisance>>;
+  readonly correlation: Matrix;
+  readonly covariance: Matrix;
+  readonly freedom: number;
+  readonly autocorrelation: Autocorrelation;
+  /** Linear theory of parameters and linear terms as declared facts stand, and the names of these unknowns. */
+  readonly plain: LinearTheory;
+  readonly unknowns: readonly string[];
+  /** Intervals before they were cut at bounds, SI. */
+  readonly uncut: readonly (readonly [number, number] | undefined)[];
+}
+
+/** Standard errors, intervals and correlations at the end of a fit. */
+export function estimatesOf({ problem, x, at }: Settled): Estimates {
+  const { setup, linear } = problem;
+  const n = setup.coordinates.length;
+  const columns = fullJacobian(problem, x, at);
+  const plain = linearTheory(columns.filter((_, j) => j < n || j >= x.length));
+  const whole = setup.held.length > 0 && x.length > n ? linearTheory(columns) : plain;
+  const freedom = Math.max(0, setup.observations - n - linear);
+  const variance = freedom > 0 ? at.ofData / freedom : Number.NaN;
+  const autocorrelation = autocorrelationOf(setup.blocks, at.residuals);
+  const slopes = setup.coordinates.map((c, j) => c.slope(x[j]));
+  const constants = setup.constants.flatMap((c) => {
+    const shift = constantSlope(problem, x, at, c);
+    return shift ? [whole.respond(shift)] : [];
+  });
+
+  const plainAt = (i: number, j: number): number => variance * plain.inverse[i * plain.n + j];
+  // In coordinates: the data's part grows with autocorrelation, then come held facts, then constants.
+  const wideAt = (i: number, j: number): number => {
+    const known = plainAt(i, j);
+    const withFacts = variance * whole.inverse[i * whole.n + j];
+    const carried = constants.reduce((sum, d) => sum + d[i] * d[j], 0);
+    return known * autocorrelation.widening ** 2 + (withFacts - known) + carried;
+  };
+  const matrix = (entry: (i: number, j: number) => number): Matrix => ({
+    names: setup.coordinates.map((c) => c.name),
+    rows: setup.coordinates.map((_, i) => setup.coordinates.map((_, j) => entry(i, j))),
+  });
+  const t = freedom > 0 ? studentTQuantile(0.975, freedom) : Number.NaN;
+  const uncut = setup.coordinates.map((c, j): readonly [number, number] | undefined => {
+    const half = t * Math.sqrt(wideAt(j, j)) * slopes[j];
+    const value = c.toSi(x[j]);
+    return Number.isFinite(half) ? [value - half, value + half] : undefined;
+  });
+  const parameters = setup.coordinates.map((c, j): FittedParameter => {
+    const se = finite(Math.sqrt(plainAt(j, j)) * slopes[j]);
+    const whole = uncut[j] ?? [c.lower, c.upper];
+    const cut: [number, number] = [Math.max(c.lower, whole[0]), Math.min(c.upper, whole[1])];
+    return {
+      name: c.name,
+      value: c.toSi(x[j]),
+      unit: c.unit,
+      standardError: se,
+      ...(se !== undefined && autocorrelation.significant
+        ? { standardErrorCorrelated: se * autocorrelation.widening }
+        : {}),
+      interval95: cut.every(Number.isFinite) ? cut : undefined,
+      atBound: x[j] <= c.from ? "lower" : x[j] >= c.to ? "upper" : undefined,
+    };
+  });
+  const { nuisance, names } = nuisanceOf(problem, at, (k) => finite(Math.sqrt(plainAt(n + k, n + k))));
+  return {
+    parameters,
+    nuisance,
+    correlation: matrix((i, j) => plainAt(i, j) / Math.sqrt(plainAt(i, i) * plainAt(j, j))),
+    covariance: matrix((i, j) => wideAt(i, j) * slopes[i] * slopes[j]),
+    freedom,
+    autocorrelation,
+    plain,
+    unknowns: [...setup.coordinates.map((c) => c.name), ...names],
+    uncut,
+  };
+}
+
+/** The linear terms of each block in people's units, in the order of the Jacobian's columns: scale, offset, drift. */
+function nuisanceOf(
+  problem: Settled["problem"],
+  at: Settled["at"],
+  errorOf: (k: number) => number | undefined,
+): { nuisance: Record<string, Nuisance>; names: string[] } {
+  const { network, blocks } = problem.setup;
+  const perTime = network.units.time;
+  const nuisance: Record<string, Nuisance> = {};
+  const names: string[] = [];
+  for (const [b, block] of blocks.entries()) {
+    const unit = block.declared.unit;
+    const { scale, offset, drift } = at.terms[b];
+    const add = (name: string, value: number, of: Estimate["unit"]): Estimate => {
+      const estimate = { value, unit: of, standardError: errorOf(names.length) };
+      names.push(`the ${name} of '${block.key}'`);
+      return estimate;
+    };
+    const drifting = {
+      name: `${unit.name}/${perTime.name}`,
+      factor: unit.factor / perTime.factor,
+      offset: 0,
+      dimension: unit.dimension.map((d, i) => d - perTime.dimension[i]) as unknown as Estimate["unit"]["dimension"],
+    };
+    const bare = { name: "", factor: 1, offset: 0, dimension: [0, 0, 0, 0, 0, 0, 0] as const };
+    nuisance[block.key] = {
+      ...(block.declared.scale === "free" ? { scale: add("scale", scale, bare) } : {}),
+      ...(block.declared.baseline !== "none" ? { offset: add("offset", offset, { ...unit, offset: 0 }) } : {}),
+      ...(block.declared.baseline === "drift" ? { drift: add("drift", drift, drifting) } : {}),
+    };
+  }
+  return { nuisance, names };
+}
+
+const finite = (v: number): number | undefined => (Number.isFinite(v) ? v : undefined);

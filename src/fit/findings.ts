@@ -1,0 +1,116 @@
+import { fQuantile } from "../numerics/distributions.js";
+import { type Code, type DataOf, problem } from "../problems/report.js";
+import { formatQuantity } from "../units/format.js";
+import type { Estimates } from "./estimates.js";
+import type { FitFinding, FoundOptimum } from "./result.js";
+import type { Setup } from "./setup.js";
+
+/** What the findings look at. */
+export interface Ended {
+  readonly setup: Setup;
+  readonly estimates: Estimates;
+  readonly optima: readonly FoundOptimum[];
+  readonly converged: boolean;
+  readonly cancelled: boolean;
+}
+
+/** Everything that a reader of the fit must know, the gravest first. */
+export function findingsOf(ended: Ended): FitFinding[] {
+  return [
+    ...howItEnded(ended),
+    ...cannotTell(ended),
+    ...bounds(ended),
+    ...correlated(ended),
+    ...residuals(ended),
+    ...others(ended),
+  ];
+}
+
+function say<C extends Code>(
+  { setup }: Ended,
+  code: C,
+  data: DataOf<C>,
+  about: readonly string[],
+  evidence: FitFinding["evidence"],
+): FitFinding {
+  const { message, fix } = problem(code, setup.network.at, data);
+  return { code, message, fix, evidence, about };
+}
+
+function howItEnded(e: Ended): FitFinding[] {
+  const { evaluations } = e.setup.cost;
+  if (e.cancelled) return [say(e, "fit-cancelled", { evaluations }, [], { evaluations })];
+  return e.converged ? [] : [say(e, "fit-not-converged", { evaluations }, [], { evaluations })];
+}
+
+/** Combinations that leave the curve as it is, as far as parameters take part. */
+function cannotTell(e: Ended): FitFinding[] {
+  const { plain, unknowns } = e.estimates;
+  const n = e.setup.coordinates.length;
+  return plain.blind.flatMap((vector) => {
+    const most = vector.reduce((m, v) => Math.max(m, Math.abs(v)), 0);
+    const about = unknowns.filter((_, j) => Math.abs(vector[j]) > 1e-2 * most);
+    if (!about.some((name) => unknowns.indexOf(name) < n)) return [];
+    const evidence = Object.fromEntries(about.map((name) => [name, vector[unknowns.indexOf(name)] / most]));
+    return [say(e, "cannot-tell", { names: about }, about, evidence)];
+  });
+}
+
+function bounds(e: Ended): FitFinding[] {
+  return e.estimates.parameters.flatMap((p, j) => {
+    const { lower, upper } = e.setup.coordinates[j];
+    const { name } = p;
+    const evidence = { value: p.value, lower, upper };
+    if (p.atBound) {
+      const bound = formatQuantity(p.atBound === "lower" ? lower : upper, p.unit);
+      return [say(e, "parameter-at-bound", { name, side: p.atBound, bound }, [name], evidence)];
+    }
+    const whole = e.estimates.uncut[j];
+    if (!whole) return [];
+    const [low, high] = [whole[0] < lower, whole[1] > upper];
+    const intervals = { ...evidence, from: whole[0], to: whole[1] };
+    if (low && high) return [say(e, "wide-interval", { name }, [name], intervals)];
+    return low || high ? [say(e, "interval-cut", { name, side: low ? "lower" : "upper" }, [name], intervals)] : [];
+  });
+}
+
+function correlated(e: Ended): FitFinding[] {
+  const { names, rows } = e.estimates.correlation;
+  return names.flatMap((a, i) =>
+    names.slice(i + 1).flatMap((b, k) => {
+      const r = rows[i][i + 1 + k];
+      return Math.abs(r) > 0.95 ? [say(e, "strongly-correlated", { a, b, r }, [a, b], { correlation: r })] : [];
+    }),
+  );
+}
+
+function residuals(e: Ended): FitFinding[] {
+  const { lag1, deviations, significant, effective } = e.estimates.autocorrelation;
+  const points = e.setup.observations;
+  const evidence = { lag1, deviations, points, effective };
+  const negative = Object.entries(e.estimates.nuisance).filter(([, n]) => n.scale && !(n.scale.value > 0));
+  return [
+    ...negative.map(([key, n]) => say(e, "scale-not-positive", { key }, [key], { scale: n.scale?.value ?? 0 })),
+    ...(significant ? [say(e, "residuals-correlated", { lag1, points, effective }, [], evidence)] : []),
+  ];
+}
+
+/** Other optima inside the 95 % region of the best one's sum of squares (Beale, J. R. Statist. Soc. B 22 (1960) 41-88). */
+function others(e: Ended): FitFinding[] {
+  const { freedom, parameters } = e.estimates;
+  const k = parameters.length;
+  const best = e.optima[0];
+  if (!best || freedom === 0) return [];
+  const limit = best.residualSumOfSquares * (1 + (k / freedom) * fQuantile(0.95, k, freedom));
+  const close = e.optima
+    .slice(1)
+    .filter(
+      (o) =>
+        o.residualSumOfSquares <= limit &&
+        parameters.some(
+          (p) => p.standardError !== undefined && Math.abs(o.values[p.name] - p.value) > 2 * p.standardError,
+        ),
+    );
+  const evidence = { best: best.residualSumOfSquares, next: close[0]?.residualSumOfSquares ?? 0, limit };
+  return close.length > 0 ? [say(e, "several-optima", { others: close.length }, [], evidence)] : [];
+}

@@ -1,0 +1,124 @@
+import type { Network } from "../model/network.js";
+import type { Trial } from "../model/trial.js";
+import type { Problem } from "../problems/problem.js";
+import { collector } from "../problems/report.js";
+import { criteriaOf } from "./criteria.js";
+import { estimatesOf } from "./estimates.js";
+import { findingsOf } from "./findings.js";
+import type { ForwardModel } from "./forward.js";
+import { networkModel } from "./network-model.js";
+import { prepare } from "./prepare.js";
+import { problemWith } from "./problem.js";
+import type { Fit, FittedReading, FoundOptimum } from "./result.js";
+import { type SearchResult, searchFrom, type Watch } from "./search.js";
+import { type Settled, settle } from "./settle.js";
+import { type Setup, valuesAt } from "./setup.js";
+import { startPoints } from "./starts.js";
+import { fittedCurve, weightsFor } from "./weights.js";
+
+export interface FitOptions {
+  /** Parameters to estimate; the others stay at their value. Default: all. */
+  readonly free?: readonly string[];
+  /** Starts besides the file's own values; default: as many as the number of parameters and the tubes call for; 0: none. */
+  readonly starts?: number;
+  /** Of the low-discrepancy starts. Default 1. */
+  readonly seed?: number;
+  /** Asked often; true ends the fit with the best so far, marked. */
+  readonly cancelled?: () => boolean;
+  readonly progress?: Watch["progress"];
+}
+
+/** `fit` is undefined where `problems` hold an error. */
+export interface FitOutcome {
+  readonly fit: Fit | undefined;
+  readonly problems: readonly Problem[];
+}
+
+/**
+ * Estimates the parameters of a network from tracer trials by bounded nonlinear least squares from many starts, linear terms
+ * (scale, offset, drift) taken out by variable projection.
+ * Never throws on what a file can hold; deterministic for a given seed.
+ */
+export function fit(network: Network, trials: readonly Trial[], options: FitOptions = {}): FitOutcome {
+  return fitWith(networkModel(network), network, trials, options);
+}
+
+/** The same with any forward model in place of the exact tracer response. */
+export function fitWith(
+  model: ForwardModel,
+  network: Network,
+  trials: readonly Trial[],
+  options: FitOptions = {},
+): FitOutcome {
+  const { report, problems } = collector();
+  const setup = prepare(model, network, trials, options.free, report);
+  if (!setup) return { fit: undefined, problems };
+  const watch: Watch = { cancelled: () => options.cancelled?.() ?? false, progress: options.progress ?? (() => {}) };
+
+  const weights = weightsFor(setup);
+  const problem = problemWith(setup, weights.weight);
+  const unknowns = setup.coordinates.length + problem.linear;
+  if (setup.observations <= unknowns) {
+    report("too-few-points", trials[0]?.at ?? network.at, { points: setup.observations, unknowns });
+    return { fit: undefined, problems };
+  }
+  const file = Float64Array.from(setup.coordinates, (c) => c.fromSi(c.start));
+  const plan = { others: options.starts, seed: options.seed ?? 1 };
+  const starts = startPoints(setup, file, plan, (x) => problem.evaluate(x) !== undefined);
+  const found = searchFrom(problem, starts, watch);
+  const settled = found.best && settle(setup, weights, problem, found.best, watch);
+  if (!settled) {
+    report("no-start", network.at, { tried: setup.cost.evaluations });
+    return { fit: undefined, problems };
+  }
+  return { fit: resultOf(setup, settled, found), problems };
+}
+
+function resultOf(setup: Setup, settled: Settled, found: SearchResult): Fit {
+  const { x, at, weights, problem } = settled;
+  const estimates = estimatesOf(settled);
+  const unit = weights.inUnit ? setup.blocks[0].unit : undefined;
+  const freeParameters = setup.coordinates.length + problem.linear;
+  const { observations } = setup;
+  const optima = found.optima.map(
+    (o): FoundOptimum => ({ values: valuesAt(setup, o.x), residualSumOfSquares: o.sum, starts: o.reached }),
+  );
+  const converged = settled.converged && !found.cancelled;
+  const n = setup.coordinates.length;
+  return {
+    parameters: estimates.parameters,
+    values: valuesAt(setup, x),
+    nuisance: estimates.nuisance,
+    residualSumOfSquares: at.ofData,
+    residualUnit: unit,
+    observations,
+    freeParameters,
+    ...criteriaOf(at.ofData, observations, freeParameters, weights.variances, weights.logVariances),
+    correlation: estimates.correlation,
+    covariance: estimates.covariance,
+    freedom: estimates.freedom,
+    converged,
+    stopped: found.cancelled ? "cancelled" : undefined,
+    evaluations: setup.cost.evaluations,
+    optima,
+    readings: readingsOf(setup, settled),
+    held: setup.held.map((h, j) => ({ says: h.says, deviations: x[n + j] ?? 0 })),
+    findings: findingsOf({ setup, estimates, optima, converged, cancelled: found.cancelled }),
+  };
+}
+
+function readingsOf(setup: Setup, { at }: Settled): FittedReading[] {
+  return setup.blocks.map((block, b) => {
+    const fitted = fittedCurve(block.time, block.origin, at, b);
+    return {
+      trial: setup.trials[block.trial].title,
+      at: block.declared.at,
+      key: block.key,
+      unit: block.declared.unit,
+      time: block.time,
+      measured: block.measured,
+      fitted,
+      residual: block.measured.map((y, i) => y - fitted[i]),
+    };
+  });
+}

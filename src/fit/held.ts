@@ -1,0 +1,91 @@
+import { evaluateNames } from "../compile/evaluate.js";
+import type { Named, Network } from "../model/network.js";
+import type { Injection, Reading, Trial } from "../model/trial.js";
+import type { Env, Value } from "../model/value.js";
+import { shifted } from "./settings.js";
+
+/** The declared facts of all trials, as a run may move them within their `±`. */
+export interface Facts {
+  readonly trials: Trial[];
+  readonly values: Record<string, number>;
+}
+
+/** A fact with a declared standard deviation: an unknown that its `±` holds near what the file says. */
+export interface Held {
+  readonly says: string;
+  /** Standard deviation, SI. */
+  readonly sd: number;
+  /** Moves the fact by `by` (SI) from what the file says. */
+  move(facts: Facts, by: number): void;
+}
+
+/** Doses, flows of the day, feed flows, sample lines and parameters that stay at their value, each with a `±`. */
+export function heldFacts(network: Network, trials: readonly Trial[], free: ReadonlySet<string>, env: Env): Held[] {
+  const setByAll = (name: string): boolean => trials.every((t) => t.flows.has(name.replace(/\.flow$/, "")));
+  const names = network.names.filter(
+    (n) => n.role !== "constant" && !free.has(n.name) && !(n.role === "feed-flow" && setByAll(n.name)),
+  );
+  return [...names.flatMap((n) => heldName(network, n, env)), ...trials.flatMap((t, k) => heldOfTrial(t, k, env))];
+}
+
+/** Constants with a `±`, of the network and as the day of a trial set them. */
+export function uncertainConstants(network: Network, trials: readonly Trial[], env: Env): Held[] {
+  const ofNetwork = network.names.filter((n) => n.role === "constant").flatMap((n) => heldName(network, n, env));
+  const ofDays = trials.flatMap((trial, k) =>
+    [...trial.with].flatMap(([name, value]) =>
+      heldValue(value, k, `${name} of '${trial.title}'`, env, (t, v) => ({ ...t, with: new Map(t.with).set(name, v) })),
+    ),
+  );
+  return [...ofNetwork, ...ofDays];
+}
+
+function heldName(network: Network, named: Named, env: Env): Held[] {
+  const sd = named.value.sd?.(env) ?? 0;
+  const move = (facts: Facts, by: number): void => {
+    facts.values[named.name] = evaluateNames(network, facts.values)[named.slot] + by;
+  };
+  return sd > 0 ? [{ says: named.name, sd, move }] : [];
+}
+
+function heldValue(
+  value: Value | undefined,
+  trial: number,
+  says: string,
+  env: Env,
+  change: (trial: Trial, moved: Value) => Trial,
+): Held[] {
+  const sd = value?.sd?.(env) ?? 0;
+  if (!value || !(sd > 0)) return [];
+  const move = (facts: Facts, by: number): void => {
+    facts.trials[trial] = change(facts.trials[trial], shifted(value, by));
+  };
+  return [{ says, sd, move }];
+}
+
+function heldOfTrial(trial: Trial, k: number, env: Env): Held[] {
+  const of = `of '${trial.title}'`;
+  const flows = [...trial.flows].flatMap(([feed, flow]) =>
+    heldValue(flow, k, `flow of ${feed} ${of}`, env, (t, v) => ({ ...t, flows: new Map(t.flows).set(feed, v) })),
+  );
+  const doses = trial.injections.flatMap(({ form }, i) => {
+    if (form.is === "signal") return [];
+    const set = (t: Trial, changed: Injection["form"]): Trial => ({
+      ...t,
+      injections: t.injections.map((one, j) => (j === i ? { ...one, form: changed } : one)),
+    });
+    return form.is === "pulse"
+      ? heldValue(form.amount, k, `dose ${of}`, env, (t, amount) => set(t, { ...form, amount }))
+      : heldValue(form.level, k, `step ${of}`, env, (t, level) => set(t, { ...form, level }));
+  });
+  const lines = trial.readings.flatMap(({ line, at }, i) => {
+    const set = (t: Trial, part: Partial<Reading["line"]>): Trial => ({
+      ...t,
+      readings: t.readings.map((one, j) => (j === i ? { ...one, line: { ...one.line, ...part } } : one)),
+    });
+    return [
+      ...heldValue(line.delay, k, `line delay at ${at} ${of}`, env, (t, delay) => set(t, { delay })),
+      ...heldValue(line.lag, k, `line lag at ${at} ${of}`, env, (t, lag) => set(t, { lag })),
+    ];
+  });
+  return [...flows, ...doses, ...lines];
+}

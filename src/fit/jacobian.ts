@@ -1,0 +1,105 @@
+import type { Held } from "./held.js";
+import type { Evaluation, Problem } from "./problem.js";
+import { curvesAt, type Setup } from "./setup.js";
+
+/** Step of a central difference: the model is exact to about 1e-13 of its peak, so 1e-5 leaves errors near 1e-8. */
+const step = 1e-5;
+
+/**
+ * The full Jacobian of the weighted fitted curve at a point, by columns: first the coordinates of `x` with the linear terms
+ * held (central differences, one-sided at a bound or where no vessel is beyond), then the linear terms, exact.
+ * Rows: observations, then priors.
+ * @returns columns, each as long as the residuals
+ */
+export function fullJacobian(problem: Problem, x: Float64Array, at: Evaluation): Float64Array[] {
+  const { setup, projectors, priors, weight } = problem;
+  const rows = at.residuals.length;
+  const columns: Float64Array[] = [];
+  for (let j = 0; j < x.length; j++) {
+    const c = new Float64Array(rows);
+    const slopes = curveSlopes(setup, x, j, at.curves);
+    if (slopes) weighCurves(setup, slopes, at, weight, c);
+    for (const [p, prior] of priors.entries()) {
+      if (prior.index === j) c[setup.observations + p] = -prior.slope(x[j]);
+    }
+    columns.push(c);
+  }
+  for (const [b, projector] of projectors.entries()) {
+    for (const part of projector.columns(at.curves[b])) {
+      const c = new Float64Array(rows);
+      c.set(part, setup.blocks[b].from);
+      columns.push(c);
+    }
+  }
+  return columns;
+}
+
+/**
+ * Weighted change of the fitted curve per standard deviation of an uncertain constant, linear terms held.
+ * @returns undefined where it cannot be moved
+ */
+export function constantSlope(
+  problem: Problem,
+  x: Float64Array,
+  at: Evaluation,
+  constant: Held,
+): Float64Array | undefined {
+  const { setup } = problem;
+  const curves = (by: number): Float64Array[] | undefined =>
+    curvesAt(setup, x, (facts) => constant.move(facts, by * constant.sd));
+  const slopes = difference(curves, 1e-3, at.curves, true, true);
+  if (!slopes) return undefined;
+  const c = new Float64Array(at.residuals.length);
+  weighCurves(setup, slopes, at, problem.weight, c);
+  return c;
+}
+
+function weighCurves(
+  setup: Setup,
+  slopes: Float64Array[],
+  at: Evaluation,
+  weight: Float64Array,
+  into: Float64Array,
+): void {
+  for (const [b, block] of setup.blocks.entries()) {
+    const { scale } = at.terms[b];
+    for (let i = 0; i < block.time.length; i++) into[block.from + i] = weight[block.from + i] * scale * slopes[b][i];
+  }
+}
+
+/** d curves / d x[j], SI per unit of the coordinate. */
+function curveSlopes(
+  setup: Setup,
+  x: Float64Array,
+  j: number,
+  here: readonly Float64Array[],
+): Float64Array[] | undefined {
+  const coordinate = setup.coordinates[j];
+  const h = coordinate ? step * Math.max(1, coordinate.from === 0 ? 1 : Math.abs(x[j])) : 1e-3;
+  const curves = (by: number): Float64Array[] | undefined => {
+    const moved = Float64Array.from(x);
+    moved[j] += by;
+    return curvesAt(setup, moved);
+  };
+  const up = !coordinate || x[j] + h <= coordinate.to;
+  const down = !coordinate || x[j] - h >= coordinate.from;
+  return difference(curves, h, here, up, down);
+}
+
+/** Central where both sides exist, else one-sided of second order. */
+function difference(
+  curves: (by: number) => Float64Array[] | undefined,
+  h: number,
+  here: readonly Float64Array[],
+  up: boolean,
+  down: boolean,
+): Float64Array[] | undefined {
+  const above = up ? curves(h) : undefined;
+  const below = down ? curves(-h) : undefined;
+  if (above && below) return above.map((a, b) => a.map((v, i) => (v - below[b][i]) / (2 * h)));
+  const side = above ? 1 : -1;
+  const near = above ?? below;
+  const far = near && curves(2 * side * h);
+  if (!near || !far) return undefined;
+  return near.map((a, b) => a.map((v, i) => (side * (4 * v - 3 * here[b][i] - far[b][i])) / (2 * h)));
+}

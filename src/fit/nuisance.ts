@@ -1,0 +1,95 @@
+import type { Block } from "./observations.js";
+
+/** Best linear terms of one reading beside a given curve, SI. Drift is per second, counted from the block's origin. */
+export interface LinearTerms {
+  readonly scale: number;
+  readonly offset: number;
+  readonly drift: number;
+}
+
+/**
+ * Takes the linear terms of one reading out of the problem (variable projection, Golub & Pereyra, SIAM J. Numer. Anal.
+ * 10 (1973) 413-432): the residual left after the best offset, drift and scale for a given curve. The basis is made
+ * orthonormal once by Gram-Schmidt run twice (Giraud, Langou & Rozloznik, Comput. Math. Appl. 50 (2005) 1069-1075).
+ */
+export interface Projector {
+  /** Number of linear terms. */
+  readonly terms: number;
+  /** Writes weighted residuals (measured - fitted) of `model` (SI) to `out` from the block's place on. */
+  project(model: Float64Array, out: Float64Array): LinearTerms;
+  /** Columns of the weighted linear terms beside `model`: scale, offset, drift as far as free; SI per second for drift. */
+  columns(model: Float64Array): Float64Array[];
+}
+
+/** @param weight  of each observation of the whole list, 1/SI; those of the block are read and kept by reference */
+export function projectorFor(block: Block, weight: Float64Array): Projector {
+  const { time, measured, from, origin, span, declared } = block;
+  const n = time.length;
+  const free = declared.scale === "free";
+  const fixed: Float64Array[] = [];
+  if (declared.baseline !== "none") fixed.push(column(n, (i) => weight[from + i]));
+  if (declared.baseline === "drift") fixed.push(column(n, (i) => (weight[from + i] * (time[i] - origin)) / span));
+  const basis = orthonormal(fixed);
+  const target = column(n, (i) => weight[from + i] * measured[i]);
+  const targetLeft = Float64Array.from(target);
+  removeTwice(targetLeft, basis);
+  const curve = new Float64Array(n);
+
+  const project = (model: Float64Array, out: Float64Array): LinearTerms => {
+    let scale = 1;
+    for (let i = 0; i < n; i++) curve[i] = weight[from + i] * model[i];
+    removeTwice(curve, basis);
+    if (free) {
+      const norm = dot(curve, curve);
+      scale = norm > 0 ? dot(curve, targetLeft) / norm : 0;
+    }
+    for (let i = 0; i < n; i++) out[from + i] = targetLeft[i] - scale * curve[i];
+    return { scale, ...baselineOf(model, scale, out) };
+  };
+
+  // Offset and drift follow from what the residual leaves of the data: fixed . coefficients = target - scale curve - residual.
+  const baselineOf = (model: Float64Array, scale: number, out: Float64Array): { offset: number; drift: number } => {
+    if (fixed.length === 0) return { offset: 0, drift: 0 };
+    for (let i = 0; i < n; i++) curve[i] = target[i] - scale * weight[from + i] * model[i] - out[from + i];
+    const second = basis.length > 1 ? dot(basis[1], curve) / dot(basis[1], fixed[1]) : 0;
+    const first =
+      (dot(basis[0], curve) - (second === 0 ? 0 : second * dot(basis[0], fixed[1]))) / dot(basis[0], fixed[0]);
+    return { offset: first, drift: second / span };
+  };
+
+  const columns = (model: Float64Array): Float64Array[] => {
+    const list = fixed.map((c, k) => (k === 1 ? c.map((x) => x * span) : c));
+    return free ? [column(n, (i) => weight[from + i] * model[i]), ...list] : list;
+  };
+  return { terms: fixed.length + (free ? 1 : 0), project, columns };
+}
+
+const column = (n: number, at: (i: number) => number): Float64Array =>
+  Float64Array.from({ length: n }, (_, i) => at(i));
+
+function dot(a: Float64Array, b: Float64Array): number {
+  let sum = 0;
+  for (let i = 0; i < a.length; i++) sum += a[i] * b[i];
+  return sum;
+}
+
+function removeTwice(v: Float64Array, basis: readonly Float64Array[]): void {
+  for (let pass = 0; pass < 2; pass++) {
+    for (const q of basis) {
+      const share = dot(q, v);
+      for (let i = 0; i < v.length; i++) v[i] -= share * q[i];
+    }
+  }
+}
+
+/** Leaves out a column that the earlier ones already span (a single point, equal times). */
+function orthonormal(columns: readonly Float64Array[]): Float64Array[] {
+  const basis: Float64Array[] = [];
+  for (const c of columns) {
+    const q = Float64Array.from(c);
+    removeTwice(q, basis);
+    const norm = Math.sqrt(dot(q, q));
+    if (norm > 1e-12 * Math.sqrt(dot(c, c))) basis.push(q.map((x) => x / norm));
+  }
+  return basis;
+}

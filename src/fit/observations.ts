@@ -1,0 +1,76 @@
+import type { Reading, Trial } from "../model/trial.js";
+import type { Unit } from "../units/unit.js";
+
+/** The points of one reading that a fit looks at: calibrated, without what is left out. */
+export interface Block {
+  /** Index of the trial, and of the reading in it. */
+  readonly trial: number;
+  readonly reading: number;
+  /** `trial title/at`, made unique where a trial reads twice at one place. */
+  readonly key: string;
+  readonly declared: Reading;
+  /** Where the block begins in the list of all observations. */
+  readonly from: number;
+  /** s on the trial's clock, and concentration in SI. */
+  readonly time: Float64Array;
+  readonly measured: Float64Array;
+  /** Readings of one dimension share a group, and with it one unknown variance. */
+  readonly group: number;
+  /** Unit of the group (that of its first reading): residuals are counted in it. */
+  readonly unit: Unit;
+  /** Baseline terms count from here (the first injection), s; drift is scaled by `span`, s, in the search. */
+  readonly origin: number;
+  readonly span: number;
+}
+
+/** All readings that have points, in the order of the trials. Drafts (no file) are passed over. */
+export function blocksOf(trials: readonly Trial[]): Block[] {
+  const blocks: Block[] = [];
+  const groups: { dimension: string; unit: Unit }[] = [];
+  const seen = new Map<string, number>();
+  let from = 0;
+  for (const [t, trial] of trials.entries()) {
+    const starts = trial.injections.map((i) => i.start);
+    const origin = starts.length > 0 ? Math.min(...starts) : 0;
+    for (const [r, declared] of trial.readings.entries()) {
+      const points = keptPoints(declared);
+      if (points.time.length === 0) continue;
+      const dimension = declared.unit.dimension.join();
+      let group = groups.findIndex((g) => g.dimension === dimension);
+      if (group < 0) group = groups.push({ dimension, unit: declared.unit }) - 1;
+      const plain = `${trial.title}/${declared.at}`;
+      const count = (seen.get(plain) ?? 0) + 1;
+      seen.set(plain, count);
+      const key = count === 1 ? plain : `${plain} (${count})`;
+      const span = points.time.reduce((most, x) => Math.max(most, Math.abs(x - origin)), 0) || 1;
+      blocks.push({
+        trial: t,
+        reading: r,
+        key,
+        declared,
+        from,
+        ...points,
+        group,
+        unit: groups[group].unit,
+        origin,
+        span,
+      });
+      from += points.time.length;
+    }
+  }
+  return blocks;
+}
+
+/** Points of a reading after calibration and `leave-out` (both ends included), finite ones only, in order of time. */
+function keptPoints(reading: Reading): { time: Float64Array; measured: Float64Array } {
+  const { series, calibration: c, leaveOut } = reading;
+  if (!series) return { time: new Float64Array(0), measured: new Float64Array(0) };
+  const value = (i: number): number => (c ? ((series.value[i] - c.blank) / c.rise) * c.per : series.value[i]);
+  const leftOut = (t: number): boolean => leaveOut.some((s) => t >= s.from && t <= s.to);
+  const kept = Array.from(series.time.keys()).filter((i) => Number.isFinite(value(i)) && !leftOut(series.time[i]));
+  kept.sort((i, j) => series.time[i] - series.time[j]);
+  return { time: Float64Array.from(kept, (i) => series.time[i]), measured: Float64Array.from(kept, value) };
+}
+
+/** Number of points of all blocks. */
+export const countOf = (blocks: readonly Block[]): number => blocks.reduce((n, b) => n + b.time.length, 0);

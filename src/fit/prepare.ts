@@ -1,0 +1,50 @@
+import { evaluateNames } from "../compile/evaluate.js";
+import type { Named, Network } from "../model/network.js";
+import type { Trial } from "../model/trial.js";
+import type { Report } from "../problems/report.js";
+import { nearest } from "../text/nearest.js";
+import { coordinateOf } from "./coordinates.js";
+import type { ForwardModel } from "./forward.js";
+import { heldFacts, uncertainConstants } from "./held.js";
+import { blocksOf, countOf } from "./observations.js";
+import type { Setup } from "./setup.js";
+
+/**
+ * Gathers what a fit needs.
+ * @param free  names of the parameters to estimate; undefined: all
+ * @returns undefined, with the reason reported, where there is nothing to fit, or nothing to fit to
+ */
+export function prepare(
+  model: ForwardModel,
+  network: Network,
+  trials: readonly Trial[],
+  free: readonly string[] | undefined,
+  report: Report,
+): Setup | undefined {
+  const parameters = freeParameters(network, free, report);
+  if (!parameters) return undefined;
+  const blocks = blocksOf(trials);
+  const observations = countOf(blocks);
+  if (observations === 0) {
+    report("no-points", trials[0]?.at ?? network.at, { trials: trials.length });
+    return undefined;
+  }
+  const env = evaluateNames(network, {});
+  const coordinates = parameters.map((p) => coordinateOf(network, p, env));
+  const names = new Set(parameters.map((p) => p.name));
+  const held = heldFacts(network, trials, names, env);
+  const constants = uncertainConstants(network, trials, env);
+  const cost = { evaluations: 0 };
+  return { network, env, trials, coordinates, held, constants, blocks, observations, model, cost };
+}
+
+function freeParameters(network: Network, free: readonly string[] | undefined, report: Report): Named[] | undefined {
+  const all = network.names.filter((n) => n.role === "parameter");
+  const names = all.map((n) => n.name);
+  const unknown = (free ?? []).filter((name) => !names.includes(name));
+  for (const name of unknown) report("unknown-free", network.at, { name, nearest: nearest(name, names), names });
+  if (unknown.length > 0) return undefined;
+  const chosen = free ? all.filter((n) => free.includes(n.name)) : all;
+  if (chosen.length === 0) report("nothing-to-fit", network.at, {});
+  return chosen.length > 0 ? chosen : undefined;
+}

@@ -1,0 +1,80 @@
+import { type LinearTerms, type Projector, projectorFor } from "./nuisance.js";
+import { curvesAt, type Setup } from "./setup.js";
+
+/** What one point of the search gives. */
+export interface Evaluation {
+  /** Curves of the blocks, SI, and the best linear terms beside them. */
+  readonly curves: readonly Float64Array[];
+  readonly terms: readonly LinearTerms[];
+  /** Weighted residuals, measured - fitted, of all observations, then of the priors. */
+  readonly residuals: Float64Array;
+  /** Sum of squared residuals, observations only and with priors. */
+  readonly ofData: number;
+  readonly ofAll: number;
+}
+
+/** A fact that pulls one coordinate towards what is declared, as one more residual. */
+export interface Prior {
+  readonly index: number;
+  /** (declared - x) / sd times the spread of the data's weighted residuals, and its derivative with respect to x. */
+  residual(x: number): number;
+  slope(x: number): number;
+}
+
+/** A least-squares problem with its linear terms already taken out. */
+export interface Problem {
+  readonly setup: Setup;
+  /** 1 / SI per observation. */
+  readonly weight: Float64Array;
+  readonly projectors: readonly Projector[];
+  readonly priors: readonly Prior[];
+  /** Linear terms of all blocks. */
+  readonly linear: number;
+  /** undefined where the point makes no vessel. */
+  evaluate(x: Float64Array): Evaluation | undefined;
+}
+
+/**
+ * The problem at given weights and priors. It remembers the last point, so asking twice costs once.
+ * @param weight  1 / SI of each observation; owned by the problem from here on
+ */
+export function problemWith(setup: Setup, weight: Float64Array, priors: readonly Prior[] = []): Problem {
+  const projectors = setup.blocks.map((b) => projectorFor(b, weight));
+  const linear = projectors.reduce((n, p) => n + p.terms, 0);
+  let lastPoint: Float64Array | undefined;
+  let last: Evaluation | undefined;
+  const evaluate = (x: Float64Array): Evaluation | undefined => {
+    if (lastPoint && samePoint(lastPoint, x)) return last;
+    lastPoint = Float64Array.from(x);
+    const curves = curvesAt(setup, x);
+    last = curves && withTerms(setup, projectors, priors, curves, x);
+    return last;
+  };
+  return { setup, weight, projectors, priors, linear, evaluate };
+}
+
+function withTerms(
+  setup: Setup,
+  projectors: readonly Projector[],
+  priors: readonly Prior[],
+  curves: readonly Float64Array[],
+  x: Float64Array,
+): Evaluation | undefined {
+  const residuals = new Float64Array(setup.observations + priors.length);
+  const terms = projectors.map((p, b) => p.project(curves[b], residuals));
+  let ofData = 0;
+  for (let i = 0; i < setup.observations; i++) ofData += residuals[i] * residuals[i];
+  let ofAll = ofData;
+  for (const [j, prior] of priors.entries()) {
+    const r = prior.residual(x[prior.index]);
+    residuals[setup.observations + j] = r;
+    ofAll += r * r;
+  }
+  return Number.isFinite(ofAll) ? { curves, terms, residuals, ofData, ofAll } : undefined;
+}
+
+function samePoint(a: Float64Array, b: Float64Array): boolean {
+  if (a.length !== b.length) return false;
+  for (let i = 0; i < a.length; i++) if (a[i] !== b[i]) return false;
+  return true;
+}

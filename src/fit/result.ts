@@ -1,0 +1,95 @@
+import type { Settings } from "../compile/plant.js";
+import type { Code } from "../problems/report.js";
+import type { Unit } from "../units/unit.js";
+
+/** What a fit found out. All numbers SI unless said; `unit` is what people see. */
+export interface Fit {
+  readonly parameters: readonly FittedParameter[];
+  /** The fitted values by name, ready for `compile`, SI. */
+  readonly values: Settings;
+  /** Linear terms of each reading, by `trial title/at`. */
+  readonly nuisance: Readonly<Record<string, Nuisance>>;
+  /** In `residualUnit` squared; in squared standard deviations where `noise:` or several units weigh the readings. */
+  readonly residualSumOfSquares: number;
+  readonly residualUnit: Unit | undefined;
+  readonly observations: number;
+  /** Free parameters and linear terms. */
+  readonly freeParameters: number;
+  readonly aicc: number;
+  readonly bic: number;
+  /** Of the free parameters, linear theory; NaN where not estimable. */
+  readonly correlation: Matrix;
+  /** Of the free parameters, SI, as wide as the intervals: with declared `±` and autocorrelation. NaN where not estimable. */
+  readonly covariance: Matrix;
+  /** Degrees of freedom of the t-intervals. */
+  readonly freedom: number;
+  readonly converged: boolean;
+  readonly stopped: "cancelled" | undefined;
+  readonly evaluations: number;
+  /** Where descents from different starts ended, best first. */
+  readonly optima: readonly FoundOptimum[];
+  readonly readings: readonly FittedReading[];
+  /** Where the fit moved the declared facts, in their standard deviations. */
+  readonly held: readonly { readonly says: string; readonly deviations: number }[];
+  readonly findings: readonly FitFinding[];
+}
+
+export interface FittedParameter {
+  readonly name: string;
+  readonly value: number;
+  readonly unit: Unit;
+  /** Linear theory, independent residuals; undefined where the data cannot tell. */
+  readonly standardError: number | undefined;
+  /** The same with the effective sample size, where residuals hang together. */
+  readonly standardErrorCorrelated?: number;
+  /** t-interval, widened by declared `±` and by autocorrelation, cut at the bounds; undefined where neither ends it. */
+  readonly interval95: readonly [number, number] | undefined;
+  readonly atBound: "lower" | "upper" | undefined;
+}
+
+export interface Estimate {
+  readonly value: number;
+  readonly unit: Unit;
+  readonly standardError: number | undefined;
+}
+
+/** Offset and drift count from the first injection of the trial. */
+export interface Nuisance {
+  readonly offset?: Estimate;
+  readonly drift?: Estimate;
+  readonly scale?: Estimate;
+}
+
+export interface Matrix {
+  readonly names: readonly string[];
+  readonly rows: readonly (readonly number[])[];
+}
+
+export interface FoundOptimum {
+  readonly values: Settings;
+  readonly residualSumOfSquares: number;
+  /** Rough descents that ended here. */
+  readonly starts: number;
+}
+
+export interface FittedReading {
+  readonly trial: string;
+  readonly at: string;
+  readonly key: string;
+  readonly unit: Unit;
+  readonly time: Float64Array;
+  readonly measured: Float64Array;
+  readonly fitted: Float64Array;
+  /** measured - fitted. */
+  readonly residual: Float64Array;
+}
+
+/** Something a reader of the fit must know: words, and the numbers behind them. */
+export interface FitFinding {
+  readonly code: Code;
+  readonly message: string;
+  readonly fix: string;
+  readonly evidence: Readonly<Record<string, number | string>>;
+  /** Names of parameters and linear terms that it is about. */
+  readonly about: readonly string[];
+}

@@ -1,0 +1,76 @@
+import { type Evaluation, type Prior, type Problem, problemWith } from "./problem.js";
+import { descend, fully, type Optimum, type Watch } from "./search.js";
+import type { Setup } from "./setup.js";
+import { type Weights, weightsFor } from "./weights.js";
+
+/** The end of a fit: its last problem, weights, point and evaluation. */
+export interface Settled {
+  readonly problem: Problem;
+  readonly weights: Weights;
+  readonly x: Float64Array;
+  readonly at: Evaluation;
+  readonly converged: boolean;
+}
+
+/**
+ * From the best optimum of the plain problem to the end: weights that depend on the fit are renewed, declared `±` join as priors
+ * in units of the residual spread, and the descent is repeated until nothing moves.
+ */
+export function settle(
+  setup: Setup,
+  first: Weights,
+  problem: Problem,
+  found: Optimum,
+  watch: Watch,
+): Settled | undefined {
+  const at = problem.evaluate(found.x);
+  if (!at) return undefined;
+  const withPriors = setup.held.length > 0 || setup.coordinates.some((c) => c.named.value.sd);
+  let settled: Settled = { problem, weights: first, x: found.x, at, converged: found.converged };
+  if (!withPriors && !first.moving) return settled;
+  let x = Float64Array.from({ length: found.x.length + setup.held.length }, (_, j) => found.x[j] ?? 0);
+  for (let round = 0; round < 20; round++) {
+    const { problem: before, at: old } = settled;
+    const weights = first.moving ? weightsFor(setup, { ...old, before: before.weight }) : first;
+    // The spread is that of the residuals under the new weights.
+    const spread = spreadOf(problemWith(setup, weights.weight, []), x);
+    const next = problemWith(setup, weights.weight, priorsOf(setup, spread));
+    const end = descend(next, x, fully, watch);
+    const here = next.evaluate(end.x);
+    if (!here) return settled;
+    const moved = end.x.reduce((most, v, j) => Math.max(most, Math.abs(v - x[j])), 0);
+    x = Float64Array.from(end.x);
+    const still = round > 0 && moved < 1e-8;
+    settled = { problem: next, weights, x, at: here, converged: end.converged && (still || round < 19) };
+    if (still || watch.cancelled()) return settled;
+  }
+  return settled;
+}
+
+/** Standard deviation of one weighted residual at a point; 1 where it cannot be told. */
+function spreadOf(problem: Problem, x: Float64Array): number {
+  const { setup, linear } = problem;
+  const freedom = setup.observations - setup.coordinates.length - linear;
+  const at = problem.evaluate(x);
+  return at && freedom > 0 && at.ofData > 0 ? Math.sqrt(at.ofData / freedom) : 1;
+}
+
+function priorsOf(setup: Setup, spread: number): Prior[] {
+  const ofParameters = setup.coordinates.flatMap((c, index): Prior[] => {
+    const sd = c.named.value.sd?.(setup.env) ?? 0;
+    if (!(sd > 0)) return [];
+    const declared = setup.env[c.named.slot];
+    return [
+      {
+        index,
+        residual: (u) => (spread * (declared - c.toSi(u))) / sd,
+        slope: (u) => (-spread * c.slope(u)) / sd,
+      },
+    ];
+  });
+  const n = setup.coordinates.length;
+  const ofFacts = setup.held.map(
+    (_, j): Prior => ({ index: n + j, residual: (e) => -spread * e, slope: () => -spread }),
+  );
+  return [...ofParameters, ...ofFacts];
+}

@@ -1,0 +1,71 @@
+import type { Network } from "../model/network.js";
+import type { Trial } from "../model/trial.js";
+import type { Coordinate } from "./coordinates.js";
+import type { ForwardModel, WantedTimes } from "./forward.js";
+import type { Facts, Held } from "./held.js";
+import type { Block } from "./observations.js";
+
+/** Everything that stays the same through a fit. */
+export interface Setup {
+  readonly network: Network;
+  /** Values of all names as the file has them, SI, one per slot. */
+  readonly env: Float64Array;
+  readonly trials: readonly Trial[];
+  readonly coordinates: readonly Coordinate[];
+  /** Facts that a fit treats as unknown, held by their `±`. */
+  readonly held: readonly Held[];
+  /** Constants with a `±`: not estimated, carried into the intervals. */
+  readonly constants: readonly Held[];
+  readonly blocks: readonly Block[];
+  readonly observations: number;
+  readonly model: ForwardModel;
+  /** Evaluations of the forward model so far. */
+  readonly cost: { evaluations: number };
+}
+
+/** Values of the free parameters at a point of the search, SI by name. */
+export function valuesAt(setup: Setup, x: ArrayLike<number>): Record<string, number> {
+  const values: Record<string, number> = {};
+  for (const [i, c] of setup.coordinates.entries()) values[c.name] = c.toSi(x[i]);
+  return values;
+}
+
+/**
+ * The modelled curve of every block, SI.
+ * @param x      coordinates of the free parameters, then deviations of the held facts in standard deviations; a point
+ *               without the latter leaves the facts as declared
+ * @param alter  moves more facts besides
+ * @returns undefined where the values make no vessel
+ */
+export function curvesAt(
+  setup: Setup,
+  x: ArrayLike<number>,
+  alter?: (facts: Facts) => void,
+): Float64Array[] | undefined {
+  setup.cost.evaluations++;
+  const facts = factsAt(setup, x);
+  alter?.(facts);
+  const curves: Float64Array[] = [];
+  for (const [k, trial] of facts.trials.entries()) {
+    const blocks = setup.blocks.filter((b) => b.trial === k);
+    if (blocks.length === 0) continue;
+    const answer = setup.model.respond(trial, facts.values, wantedTimes(trial, blocks));
+    if (!answer) return undefined;
+    for (const b of blocks) curves.push(answer[b.reading]);
+  }
+  return curves;
+}
+
+/** Parameters and declared facts at a point of the search. */
+export function factsAt(setup: Setup, x: ArrayLike<number>): Facts {
+  const facts: Facts = { trials: [...setup.trials], values: valuesAt(setup, x) };
+  const n = setup.coordinates.length;
+  for (let j = 0; n + j < x.length; j++) if (x[n + j] !== 0) setup.held[j].move(facts, x[n + j] * setup.held[j].sd);
+  return facts;
+}
+
+const none = { time: new Float64Array(0) };
+
+function wantedTimes(trial: Trial, blocks: readonly Block[]): WantedTimes {
+  return trial.readings.map((_, r) => blocks.find((b) => b.reading === r) ?? none);
+}

@@ -1,0 +1,114 @@
+import { lowDiscrepancy } from "../numerics/low-discrepancy.js";
+import { factsAt, type Setup } from "./setup.js";
+
+/** How many starts, and from which seed. */
+export interface StartPlan {
+  /** Starts besides the file's own values; undefined: chosen from the number of parameters and the sampling gaps of tubes. */
+  readonly others: number | undefined;
+  readonly seed: number;
+}
+
+/** One walk through the range of a parameter that sets the delay of a tube: one value in every sampling gap. */
+export interface DelayWalk {
+  /** Index of the coordinate. */
+  readonly index: number;
+  /** u of the coordinate, ascending. */
+  readonly at: Float64Array;
+}
+
+/** Most steps of one walk: with denser sampling than this the front is seen in many samples and the steps smooth out. */
+const mostSteps = 40;
+
+/**
+ * Where tubes put their front between two samples: the sum of squares is flat there and jumps as the front crosses a sample, so
+ * a search must begin once in every gap. For each delay the parameter that moves it most is walked at start values of the others.
+ */
+export function delayWalks(setup: Setup, from: Float64Array): DelayWalk[] {
+  const n = setup.coordinates.length;
+  const ranges = setup.coordinates.map((c, j) => [
+    delays(setup, from, j, c.draw[0]),
+    delays(setup, from, j, c.draw[1]),
+  ]);
+  const count = Math.max(0, ...ranges.flat().map((d) => d.length));
+  const gap = typicalGap(setup);
+  const chosen = new Map<number, number>();
+  for (let d = 0; d < count; d++) {
+    let best = -1;
+    let most = gap;
+    for (let j = 0; j < n; j++) {
+      const moved = Math.abs((ranges[j][1][d] ?? 0) - (ranges[j][0][d] ?? 0));
+      if (Number.isFinite(moved) && moved > most) {
+        most = moved;
+        best = j;
+      }
+    }
+    if (best >= 0) chosen.set(best, Math.max(chosen.get(best) ?? 0, most));
+  }
+  return [...chosen].map(([index, moved]) => {
+    const steps = Math.min(mostSteps, Math.ceil(moved / gap));
+    const [a, b] = setup.coordinates[index].draw;
+    return { index, at: Float64Array.from({ length: steps }, (_, k) => a + ((k + 0.5) / steps) * (b - a)) };
+  });
+}
+
+/**
+ * All starts inside the bounds that make a vessel: the file's values, the steps of the delay walks about them, then a
+ * low-discrepancy sequence.
+ * @param allowed  whether a point makes a vessel
+ */
+export function startPoints(
+  setup: Setup,
+  file: Float64Array,
+  plan: StartPlan,
+  allowed: (x: Float64Array) => boolean,
+): Float64Array[] {
+  const n = setup.coordinates.length;
+  const starts: Float64Array[] = allowed(file) ? [file] : [];
+  const walked = delayWalks(setup, file).flatMap((w) => [...w.at].map((u) => withCoordinate(file, w.index, u)));
+  const others = plan.others ?? walked.length + 8 + 4 * n;
+  const steps = others >= walked.length + 4 ? walked.length : Math.floor(others / 2);
+  for (let k = 0; k < steps; k++) {
+    const x = walked[Math.floor(((k + 0.5) * walked.length) / steps)];
+    if (allowed(x)) starts.push(x);
+  }
+  const sequence = lowDiscrepancy(n, plan.seed);
+  let wanted = others - steps;
+  for (let tries = 0; wanted > 0 && tries < 50 * others; tries++) {
+    const point = sequence();
+    const x = Float64Array.from(setup.coordinates, (c, j) => c.draw[0] + point[j] * (c.draw[1] - c.draw[0]));
+    if (!allowed(x)) continue;
+    starts.push(x);
+    wanted--;
+  }
+  return starts;
+}
+
+export function withCoordinate(x: Float64Array, j: number, u: number): Float64Array {
+  const moved = Float64Array.from(x);
+  moved[j] = u;
+  return moved;
+}
+
+/** Delays of all trials with one coordinate set to `u`; tries a little inside where the very bound makes no vessel. */
+function delays(setup: Setup, from: Float64Array, j: number, u: number): number[] {
+  for (const share of [0, 0.02, 0.1, 0.3]) {
+    const facts = factsAt(setup, withCoordinate(from, j, u + share * (from[j] - u)));
+    const all = facts.trials.flatMap((trial) => [...setup.model.delays(trial, facts.values)]);
+    if (all.length > 0 && all.every(Number.isFinite)) return all;
+  }
+  return [];
+}
+
+/** Median time between neighbouring samples, the shortest of all blocks, s. */
+function typicalGap(setup: Setup): number {
+  const gaps = setup.blocks.map((b) => {
+    const t = Float64Array.from(b.time).sort();
+    const between = t
+      .subarray(1)
+      .map((v, i) => v - t[i])
+      .filter((d) => d > 0)
+      .sort();
+    return between.length > 0 ? between[between.length >> 1] : Number.POSITIVE_INFINITY;
+  });
+  return Math.min(...gaps);
+}

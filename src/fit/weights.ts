@@ -1,0 +1,87 @@
+import type { Reading } from "../model/trial.js";
+import type { Env } from "../model/value.js";
+import type { Evaluation } from "./problem.js";
+import type { Setup } from "./setup.js";
+
+/** Weights of a fit, and how many variances were estimated to get them. */
+export interface Weights {
+  /** 1 / SI per observation. */
+  readonly weight: Float64Array;
+  /** Sum of ln sigma^2 of the observations, sigma in the unit of their group: the part of the likelihood that weights carry. */
+  readonly logVariances: number;
+  readonly variances: number;
+  /** True where another fit could change them: they depend on the fitted curve or on the residuals. */
+  readonly moving: boolean;
+  /** Residuals are in the unit of their one group; otherwise in standard deviations. */
+  readonly inUnit: boolean;
+}
+
+/**
+ * Weights from `noise:` where it is declared; without it all readings of one dimension share one unknown variance, which is
+ * estimated group by group where there are several groups (iterated generalised least squares: Seber & Wild, Nonlinear
+ * Regression, 1989, section 2.8.8). A relative noise is taken of the fitted curve, of the measured one before there is
+ * any, and never below a thousandth of its peak.
+ */
+export function weightsFor(setup: Setup, fitted?: Evaluation & { readonly before: Float64Array }): Weights {
+  const weight = new Float64Array(setup.observations);
+  const groups = Math.max(...setup.blocks.map((b) => b.group)) + 1;
+  const anyNoise = setup.blocks.some((b) => b.declared.noise);
+  const spread = groups > 1 || anyNoise ? groupSpreads(setup, groups, fitted) : undefined;
+  let logVariances = 0;
+  let moving = false;
+  for (const [k, b] of setup.blocks.entries()) {
+    const noise = b.declared.noise;
+    const floor = floorOf(b.declared, setup.env);
+    const relative = noise?.relative ?? 0;
+    moving ||= relative > 0 || (!noise && spread !== undefined);
+    const curve = fitted ? fittedCurve(b.time, b.origin, fitted, k) : b.measured;
+    const least = 1e-3 * relative * peakOf(curve);
+    for (let i = 0; i < b.time.length; i++) {
+      const sigma = noise
+        ? Math.max(Math.hypot(floor, relative * curve[i]), least)
+        : spread
+          ? spread[b.group]
+          : b.unit.factor;
+      weight[b.from + i] = 1 / sigma;
+      logVariances += 2 * Math.log(sigma / b.unit.factor);
+    }
+  }
+  const unknown = new Set(setup.blocks.filter((b) => !b.declared.noise).map((b) => b.group)).size;
+  return { weight, logVariances, variances: Math.max(1, unknown), moving, inUnit: !spread };
+}
+
+/** Standard deviation of each group without `noise:`, SI: of its residuals, or of its data before there are any. */
+function groupSpreads(
+  setup: Setup,
+  groups: number,
+  fitted: (Evaluation & { readonly before: Float64Array }) | undefined,
+): Float64Array {
+  const sum = new Float64Array(groups);
+  const count = new Float64Array(groups);
+  for (const b of setup.blocks) {
+    if (b.declared.noise) continue;
+    const mean = b.measured.reduce((s, y) => s + y, 0) / b.measured.length;
+    for (let i = 0; i < b.time.length; i++) {
+      const r = fitted ? fitted.residuals[b.from + i] / fitted.before[b.from + i] : b.measured[i] - mean;
+      sum[b.group] += r * r;
+      count[b.group]++;
+    }
+  }
+  return sum.map((s, g) => Math.sqrt(s / Math.max(1, count[g])) || 1);
+}
+
+/** The declared floor, SI of the concentration; one given in the detector's unit goes through the calibration. */
+function floorOf({ noise, calibration, unit }: Reading, env: Env): number {
+  if (!noise?.floor) return 0;
+  const floor = noise.floor.of(env);
+  const sameUnit = noise.floor.dimension.join() === unit.dimension.join();
+  return calibration && !sameUnit ? Math.abs((floor / calibration.rise) * calibration.per) : floor;
+}
+
+/** Model with its linear terms, SI. */
+export function fittedCurve(time: Float64Array, origin: number, at: Evaluation, block: number): Float64Array {
+  const { scale, offset, drift } = at.terms[block];
+  return at.curves[block].map((c, i) => scale * c + offset + drift * (time[i] - origin));
+}
+
+const peakOf = (y: Float64Array): number => y.reduce((most, v) => Math.max(most, Math.abs(v)), 0);
