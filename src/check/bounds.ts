@@ -9,7 +9,12 @@ export const parameterBounds: Rule = (network, report, { env, say }) => {
     const text = (x: number) => say(x, p.value.dimension);
     if (!(low < high)) report("bounds-reversed", p.between[0].at, { name: p.name, low: text(low), high: text(high) });
     else if (value < low || value > high) {
-      report("start-outside-bounds", p.value.at, { name: p.name, value: text(value), low: text(low), high: text(high) });
+      report("start-outside-bounds", p.value.at, {
+        name: p.name,
+        value: text(value),
+        low: text(low),
+        high: text(high),
+      });
     } else if (p.spacing === "log" && low <= 0) report("log-bounds", p.between[0].at, { name: p.name });
   }
 };
@@ -29,7 +34,8 @@ export const sharesBesideRest: Rule = (network, report) => {
       if (s.split.is !== "share" || s.split.value.expression.type !== "name") continue;
       const name = s.split.value.expression.name;
       const p = network.names.find((n) => n.name === name);
-      if (p?.between && p.between[1].of([]) >= 1) report("share-all", p.between[1].at, { name: node.name, parameter: name });
+      if (p?.between && p.between[1].of([]) >= 1)
+        report("share-all", p.between[1].at, { name: node.name, parameter: name });
     }
   }
 };

@@ -9,7 +9,10 @@ export const exchanges: Rule = (network, report, { nearest }) => {
     for (const e of c.exchanges) {
       const partner = bodies.get(e.partner);
       if (!partner) {
-        const near = nearest(e.partner, [...bodies.keys()].filter((n) => n !== c.name));
+        const near = nearest(
+          e.partner,
+          [...bodies.keys()].filter((n) => n !== c.name),
+        );
         report("unknown-place", e.at, { name: e.partner, wanted: "compartment", nearest: near });
         continue;
       }
@@ -18,7 +21,12 @@ export const exchanges: Rule = (network, report, { nearest }) => {
       const key = [c.name, e.partner].sort().join(" ");
       const earlier = seen.get(key);
       if (earlier) {
-        report("exchange-twice", e.at, { name: c.name, partner: e.partner }, { at: earlier, says: "written first here" });
+        report(
+          "exchange-twice",
+          e.at,
+          { name: c.name, partner: e.partner },
+          { at: earlier, says: "written first here" },
+        );
       } else seen.set(key, e.at);
     }
   }

@@ -34,6 +34,7 @@ export const streamTargets: Rule = (network, report, { nearest }) => {
 /** Constants and parameters that nothing uses. */
 export const unusedNames: Rule = (network, report) => {
   for (const n of network.names) {
-    if (n.role !== "feed-flow" && !network.used.has(n.name)) report("unused-name", n.at, { name: n.name, role: n.role });
+    if (n.role !== "feed-flow" && !network.used.has(n.name))
+      report("unused-name", n.at, { name: n.name, role: n.role });
   }
 };

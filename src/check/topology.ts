@@ -45,7 +45,13 @@ export function reachOf(network: Network, topology: Topology): { fromFeeds: Uint
   const { ways, index } = topology;
   const at = (name: string) => index.get(name) as number;
   return {
-    fromFeeds: reachable(ways, network.feeds.map((f) => at(f.name))),
-    toOutlets: reachable({ size: ways.size, from: ways.to, to: ways.from }, network.outlets.map((o) => at(o.name))),
+    fromFeeds: reachable(
+      ways,
+      network.feeds.map((f) => at(f.name)),
+    ),
+    toOutlets: reachable(
+      { size: ways.size, from: ways.to, to: ways.from },
+      network.outlets.map((o) => at(o.name)),
+    ),
   };
 }

@@ -1,5 +1,5 @@
-import { reachOf } from "./topology.js";
 import type { Rule } from "./rule.js";
+import { reachOf } from "./topology.js";
 
 /** Feeds and outlets exist. */
 export const feedsAndOutlets: Rule = (network, report) => {
@@ -25,7 +25,9 @@ export const waysThrough: Rule = (network, report, { topology }) => {
     else if (!toOutlets[i] && node.streams.length > 0) stuck.push(node);
   }
   // Where a stream ends nowhere the circle is not the fault.
-  const lost = [...network.feeds, ...network.compartments].some((n) => n.streams.some((s) => !topology.index.has(s.to)));
+  const lost = [...network.feeds, ...network.compartments].some((n) =>
+    n.streams.some((s) => !topology.index.has(s.to)),
+  );
   const noWay = network.compartments.some((c) => c.kind.flows && c.streams.length === 0 && !exchanged.has(c.name));
   if (stuck.length > 0 && !lost && !noWay) report("closed-loop", stuck[0].at, { names: stuck.map((n) => n.name) });
   for (const o of network.outlets) {

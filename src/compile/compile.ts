@@ -90,7 +90,8 @@ function streamsOf(network: Network, env: Float64Array, flows: Flows): PlantStre
   const back = backEdges(edges, network.feeds.keys());
   const streams = flows.streams.map((s, k): PlantStream => {
     const { split } = s.stream;
-    const written = "value" in split ? split.value.at.source.text.slice(split.value.at.from, split.value.at.to) : split.is;
+    const written =
+      "value" in split ? split.value.at.source.text.slice(split.value.at.from, split.value.at.to) : split.is;
     return { from: names[s.from], to: names[s.to], flow: s.flow, role: back[k] ? "recycle" : "forward", written };
   });
   const exchanges = network.compartments.flatMap((c) =>

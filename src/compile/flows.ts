@@ -1,6 +1,6 @@
 import type { Network, Stream } from "../model/network.js";
-import { factor, solve } from "../numerics/lu.js";
 import { stronglyConnected } from "../numerics/graph.js";
+import { factor, solve } from "../numerics/lu.js";
 import type { Report } from "../problems/report.js";
 import type { Span } from "../text/source.js";
 

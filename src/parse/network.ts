@@ -1,0 +1,42 @@
+import { checkNetwork } from "../check/check.js";
+import { compile } from "../compile/compile.js";
+import { evaluateNames } from "../compile/evaluate.js";
+import type { Network } from "../model/network.js";
+import type { Problem } from "../problems/problem.js";
+import { collector, hasErrors } from "../problems/report.js";
+import type { MapNode } from "../read/tree.js";
+import { resolveNetwork } from "../resolve/network.js";
+import { cornerWarnings } from "./corners.js";
+import { type Parsed, type ParseOptions, parseDocument } from "./parsed.js";
+
+/** A network with the tree that it came from, which a study's changes are merged into. */
+export interface NetworkDocument extends Network {
+  readonly tree: MapNode;
+}
+
+/**
+ * Reads, resolves and checks a network, and balances it once at its start values.
+ * @returns every problem of the file at once; no document where one is an error. Never throws on bad input.
+ */
+export function parseNetwork(text: string, options: ParseOptions = {}): Parsed<NetworkDocument> {
+  const path = options.path ?? "network.yaml";
+  return parseDocument("network", text, path, (tree, _report, adopt) => {
+    const { network, problems } = networkFromTree(tree, path);
+    adopt(problems);
+    return network;
+  });
+}
+
+/** The same from a tree whose shape is right (a merged variant). */
+export function networkFromTree(
+  tree: MapNode,
+  path: string,
+): { network: NetworkDocument | undefined; problems: Problem[] } {
+  const { report, problems } = collector();
+  const network = resolveNetwork(tree, path, report);
+  if (hasErrors(problems)) return { network: undefined, problems };
+  checkNetwork(network, evaluateNames(network), report);
+  if (!hasErrors(problems)) problems.push(...compile(network).problems);
+  if (!hasErrors(problems)) cornerWarnings(network, report);
+  return { network: hasErrors(problems) ? undefined : { ...network, tree }, problems };
+}

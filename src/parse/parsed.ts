@@ -1,0 +1,50 @@
+import type { Problem } from "../problems/problem.js";
+import { collector, hasErrors, type Report } from "../problems/report.js";
+import { checkShape } from "../read/shape.js";
+import type { MapNode } from "../read/tree.js";
+import { readYaml } from "../read/yaml.js";
+import type { DocumentKind } from "../schema/shape.js";
+
+/** Gives the content of a file by its path, or undefined where there is none. Synchronous; the core reads no files itself. */
+export type Read = (path: string) => string | Uint8Array | undefined;
+
+export interface ParseOptions {
+  /** Where the text comes from, for messages and as the place that relative paths start from. */
+  readonly path?: string;
+  readonly read?: Read;
+}
+
+/** A document, or the reasons why there is none. Warnings may stand beside a document. */
+export interface Parsed<T> {
+  readonly document: T | undefined;
+  readonly problems: Problem[];
+}
+
+/**
+ * text -> tree -> shape -> meaning; the same for all five documents.
+ * @param meaning runs only on a tree whose shape is right; what it gives counts only where no error was reported
+ */
+export function parseDocument<T>(
+  kind: DocumentKind,
+  text: string,
+  path: string,
+  meaning: (tree: MapNode, report: Report, adopt: (problems: readonly Problem[]) => void) => T | undefined,
+): Parsed<T> {
+  const { report, problems } = collector();
+  const tree = readYaml({ path, text }, report);
+  let document: T | undefined;
+  if (tree && checkShape(tree, kind, report)) {
+    document = meaning(tree, report, (more) => problems.push(...more));
+  }
+  return { document: hasErrors(problems) ? undefined : document, problems: inOrder(problems) };
+}
+
+/** File by file in the order first met, each in the order of its lines. */
+function inOrder(problems: readonly Problem[]): Problem[] {
+  const files = [...new Set(problems.map((p) => p.at.source.path))];
+  return [...problems].sort(
+    (a, b) => files.indexOf(a.at.source.path) - files.indexOf(b.at.source.path) || a.at.from - b.at.from,
+  );
+}
+
+export const nothingToRead: Read = () => undefined;

@@ -1,0 +1,63 @@
+import { integrate } from "../numerics/integrate.js";
+import { multiply } from "../numerics/sparse.js";
+import { readOff } from "./exact.js";
+import { type Answer, driveAt, type TracerEngine } from "./linear-system.js";
+
+/** Relative tolerance of a step, and the absolute one beside the largest state that the drive can make. */
+const relative = 1e-11;
+const absolute = 1e-13;
+
+/**
+ * The compiled balances in time, by extrapolation (odex), stopped at every break of the drive. Tubes are no part of it:
+ * they are unrolled, so no front meets an integrator. The integrals are integrated as states of their own.
+ */
+export const ode: TracerEngine = {
+  name: "ode",
+  run(system, drive, queries) {
+    const n = system.input.length;
+    const times = Float64Array.from(
+      new Set(queries.flatMap((q) => (q.signal.states.length > 0 ? [...q.times].filter((t) => t >= 0) : []))),
+    ).sort();
+    const end = times[times.length - 1] ?? 0;
+    const start = new Float64Array(2 * n);
+    for (let i = 0; i < n; i++) start[i] = system.input[i] * drive.amount;
+    const dx = new Float64Array(n);
+    const size = absolute * sizeOf(drive.amount, drive.level, end) * system.input.reduce((m, b) => Math.max(m, b), 0);
+    const solved = integrate({
+      rhs: (u, y, dy) => {
+        multiply(system.rates, y, dx);
+        const { rate } = drive.times.length > 0 ? driveAt(drive, u) : { rate: 0 };
+        for (let i = 0; i < n; i++) {
+          dy[i] = dx[i] + system.input[i] * rate;
+          dy[n + i] = y[i];
+        }
+      },
+      start,
+      from: 0,
+      to: end,
+      outputs: times,
+      stops: drive.times,
+      relative,
+      absolute: Float64Array.from(start, (_, i) => Math.max(1e-300, i < n ? size : size * Math.max(end, 1))),
+    });
+    const at = new Map(Array.from(solved.times, (t, i) => [t, i]));
+    const answers = queries.map((q): Answer => {
+      const answer = { value: new Float64Array(q.times.length), integral: new Float64Array(q.times.length) };
+      q.times.forEach((u, i) => {
+        if (u < 0) return;
+        const state = solved.states[at.get(u) ?? -1];
+        if (state) readOff(q, state.subarray(0, n), state.subarray(n), drive, u, answer, i);
+        else if (q.signal.states.length === 0) readOff(q, start, start, drive, u, answer, i);
+        else answer.value[i] = answer.integral[i] = Number.NaN;
+      });
+      return answer;
+    });
+    const { end: how } = solved;
+    const stopped = how === "reached" ? undefined : `the integrator stopped at ${how.stopped} s (${how.why})`;
+    return { answers, stopped };
+  },
+};
+
+function sizeOf(amount: number, level: Float64Array, span: number): number {
+  return amount + level.reduce((m, w) => Math.max(m, Math.abs(w)), 0) * span;
+}

@@ -1,0 +1,148 @@
+import type { Plant } from "../compile/plant.js";
+import { exact } from "./exact.js";
+import { constantRate, instant, type Passage, type TracerEngine } from "./linear-system.js";
+import { moments, type NodeMoments } from "./moments.js";
+import { type Balance, balanceAt, see } from "./respond.js";
+import { type Unrolled, unroll } from "./unroll.js";
+
+export interface TracerOptions {
+  readonly engine?: TracerEngine;
+  /** Inner places to look at, by name, besides the outlets. */
+  readonly at?: readonly string[];
+}
+
+/** A curve at one place. `value` and `cumulative` per unit of tracer, as the contract of `simulate` says. */
+export interface TracerReading {
+  readonly at: string;
+  /** Pulse: c Q / amount, 1/s, without its spikes. Step: c / c_in. */
+  readonly value: Float64Array;
+  /** Integral of the pulse curve, spikes included: F where the place is the only outlet. */
+  readonly cumulative: Float64Array;
+  /** Undispersed parts: when (s) and how much of the area of `value` (0 to 1 and beyond where c Q / amount is). */
+  readonly spikes: readonly { readonly time: number; readonly area: number }[];
+  /** Area of the spikes that were too small or too many to list. */
+  readonly spikesLeftOut: number;
+  readonly moments: NodeMoments;
+  /** Area of `value` over all time: share * Q / flow through the place. */
+  readonly area: number;
+}
+
+export interface TracerResult {
+  readonly engine: string;
+  /** s */
+  readonly times: Float64Array;
+  readonly readings: readonly TracerReading[];
+  readonly balance: Balance;
+  readonly stopped: string | undefined;
+  readonly truncated: boolean;
+}
+
+/** A unit pulse or step into a feed or a compartment. */
+export interface UnitInjection {
+  readonly at: string;
+  readonly form: "pulse" | "step";
+}
+
+const mostSpikes = 10_000;
+const smallestSpike = 1e-12;
+
+/**
+ * The tracer curve at every outlet (and at inner places asked for) after a unit pulse or step.
+ * @param times s, ascending, from the injection on
+ * @returns curves in outlet order, then `options.at`; `stopped` says where an integrator gave up, with what it has
+ */
+export function tracerResponse(
+  plant: Plant,
+  injection: UnitInjection,
+  times: ArrayLike<number>,
+  options: TracerOptions = {},
+): TracerResult {
+  const engine = options.engine ?? exact;
+  const entry = plant.entry.get(injection.at);
+  if (entry === undefined) throw new RangeError(`no place '${injection.at}' in the network`);
+  const clock = Float64Array.from(times);
+  const until = clock[clock.length - 1] ?? 0;
+  const flow = injectionFlow(plant, injection.at);
+  const unrolled = unroll(plant, entry, until);
+  const drive = injection.form === "pulse" ? instant(1) : constantRate(1);
+  const places = [...plant.outlets.map((o) => o.name), ...(options.at ?? [])];
+  const passages = places.map((name) => passagesAt(plant, unrolled, name));
+  const { seen, stopped } = see(
+    unrolled,
+    drive,
+    passages.map((p) => ({ passages: p, times: clock })),
+    engine,
+  );
+  const all = moments(plant, entry);
+  const readings = places.map((at, i): TracerReading => {
+    const node = plant.exit.get(at) as number;
+    const pulse = injection.form === "pulse";
+    const value = seen[i].value.map((c) => c * flow);
+    const inflow = plant.nodes[node].inflow;
+    return {
+      at,
+      value,
+      cumulative: pulse ? seen[i].integral.map((c) => c * flow) : value,
+      ...spikesOf(passages[i], flow, pulse),
+      moments: all[node],
+      area: inflow > 0 ? (all[node].share * flow) / inflow : 0,
+    };
+  });
+  return {
+    engine: engine.name,
+    times: clock,
+    readings,
+    balance: balanceAt(plant, unrolled, drive, until, engine),
+    stopped,
+    truncated: unrolled.truncated,
+  };
+}
+
+/** The outflow of a place, by its name in the file. */
+export function passagesAt(plant: Plant, unrolled: Unrolled, name: string): Passage[] {
+  const node = plant.exit.get(name);
+  if (node === undefined) throw new RangeError(`no place '${name}' in the network`);
+  return unrolled.outflow(node);
+}
+
+/** Flow that an injection is counted against: of the feed injected into, or of all feeds. m3/s. */
+export function injectionFlow(plant: Plant, at: string): number {
+  const feed = plant.feeds.find((f) => f.name === at);
+  return feed ? feed.flow : plant.feeds.reduce((sum, f) => sum + f.flow, 0);
+}
+
+function spikesOf(passages: readonly Passage[], flow: number, pulse: boolean) {
+  const spikes: { time: number; area: number }[] = [];
+  let spikesLeftOut = 0;
+  if (pulse) {
+    for (const p of passages) {
+      const area = p.direct * flow;
+      if (area > smallestSpike && spikes.length < mostSpikes) spikes.push({ time: p.delay, area });
+      else spikesLeftOut += area;
+    }
+  }
+  return { spikes, spikesLeftOut };
+}
+
+/**
+ * When the curve is over: the time at which F reaches `level` of its end at every outlet, at most 20 mean times. s.
+ * @param entry name of the place injected into
+ */
+export function settlingTime(plant: Plant, at: string, level = 0.999): number {
+  const total = plant.feeds.reduce((sum, f) => sum + f.flow, 0);
+  const most = (20 * plant.volume.active) / total;
+  if (!(most > 0)) return 1;
+  const entry = plant.entry.get(at) as number;
+  const all = moments(plant, entry);
+  const unrolled = unroll(plant, entry, most);
+  const times = Float64Array.from({ length: 800 }, (_, i) => (most * (i + 1)) / 800);
+  const looks = plant.outlets.map((o) => ({ passages: unrolled.outflow(o.node), times }));
+  const { seen } = see(unrolled, instant(1), looks, exact);
+  let until = 0;
+  plant.outlets.forEach((o, i) => {
+    const goal = (level * all[o.node].share) / (o.flow || 1);
+    const first = seen[i].integral.findIndex((f) => f >= goal);
+    if (all[o.node].share > 0) until = Math.max(until, first < 0 ? most : times[first]);
+  });
+  return until || most;
+}
