@@ -1,32 +1,58 @@
 import type { Span } from "../text/source.js";
 import type { Dimension } from "../units/dimension.js";
-import type { Value } from "./value.js";
+import type { Env, Value } from "./value.js";
 
-/** Reactions with their rate laws bound to slots: Env = [species concentrations..., constants...]. */
+/** Reactions with their rate laws bound to slots: Env = [species concentrations..., constants..., temperature]. */
 export interface Chemistry {
   readonly title: string;
   readonly at: Span;
   readonly path: string;
   readonly species: readonly Species[];
   /** Slots species.length + i. */
-  readonly constants: readonly { readonly name: string; readonly at: Span; readonly value: Value }[];
+  readonly constants: readonly ChemicalConstant[];
+  /** Indices into `constants` in an order in which each depends on earlier ones only. */
+  readonly order: readonly number[];
+  /** Slot of the temperature, K: species.length + constants.length. */
+  readonly temperatureSlot: number;
+  /** True where a rate law or a constant asks for the temperature. */
+  readonly needsTemperature: boolean;
   readonly reactions: readonly Reaction[];
-  /** Dimension of every concentration: molar, mass or number per volume; undefined where any would do (all first order). */
-  readonly concentration: Dimension | undefined;
+  /**
+   * Every way to give the species dimensions (molar, mass or number per volume, or a bare ratio) in which each rate is
+   * concentration per time: one dimension per species. Several where the laws leave it open (all first order).
+   */
+  readonly bases: readonly (readonly Dimension[])[];
+}
+
+export interface ChemicalConstant {
+  readonly name: string;
+  readonly at: Span;
+  /** An Arrhenius constant is an expression in `T`. */
+  readonly value: Value;
 }
 
 export interface Species {
   readonly name: string;
   readonly at: Span;
+  /** kg/mol. */
+  readonly molarMass: Value | undefined;
 }
 
 export interface Reaction {
+  /** The equation or `makes` as written. */
   readonly text: string;
   readonly at: Span;
-  /** Moles made per mole of reaction, by species; negative where consumed. Length: species. */
-  readonly stoichiometry: Float64Array;
-  /** Rate, concentration per second (SI). Env: [concentrations..., constants...]. */
-  rate(env: ArrayLike<number>): number;
-  /** d rate / d concentration of each species, same Env, same order; writes into `out`, no allocation. */
-  gradient(env: ArrayLike<number>, out: Float64Array): void;
+  /** An equation counts molecules; `makes` counts whatever the concentrations count. */
+  readonly counts: "molecules" | "as written";
+  /** What one unit of reaction makes of each species, negative where consumed; species in neither side are left out. */
+  readonly makes: readonly Made[];
+  /** Rate, concentration per second (SI). */
+  rate(env: Env): number;
+  /** d rate / d concentration of each species, same Env; writes into `out` (length: species), no allocation. */
+  gradient(env: Env, out: Float64Array): void;
+}
+
+export interface Made {
+  readonly species: number;
+  number(env: Env): number;
 }

@@ -1,4 +1,5 @@
 import type { Span } from "../text/source.js";
+import type { Dimension } from "../units/dimension.js";
 import type { Chemistry } from "./chemistry.js";
 import type { Value } from "./value.js";
 
@@ -9,12 +10,29 @@ export interface Duty {
   readonly path: string;
   readonly chemistry: Chemistry | undefined;
   /** Flows of this duty by feed name. */
-  readonly flows: ReadonlyMap<string, Value>;
-  /** Constants of the chemistry or network set otherwise here. */
-  readonly with: ReadonlyMap<string, Value>;
-  /** Feed concentrations: feed name -> species -> value. */
-  readonly feeds: ReadonlyMap<string, ReadonlyMap<string, Value>>;
+  readonly flows: ReadonlyMap<string, Placed>;
+  /** Constants of the chemistry set otherwise here. */
+  readonly with: ReadonlyMap<string, Placed>;
+  /** Constants and parameters of the network set otherwise here: the names that the chemistry does not have. */
+  readonly settings: ReadonlyMap<string, Placed>;
+  /** Feed concentrations: feed name -> species -> value. A species left out is not fed. */
+  readonly feeds: ReadonlyMap<string, DutyFeed>;
+  /** K, everywhere (isothermal). */
+  readonly temperature: Value | undefined;
+  /** Dimension of the concentration of each species of the chemistry. */
+  readonly concentrations: readonly Dimension[];
   readonly report: readonly Reported[];
+}
+
+/** A value under a name of its own, and where that name stands. */
+export interface Placed {
+  readonly at: Span;
+  readonly value: Value;
+}
+
+export interface DutyFeed {
+  readonly at: Span;
+  readonly species: ReadonlyMap<string, Placed>;
 }
 
 /** A figure that a duty asks for. `at` undefined: over all outlets together. */
@@ -22,9 +40,11 @@ export interface Reported {
   readonly text: string;
   readonly place: Span;
   readonly what: "conversion" | "yield" | "selectivity" | "log-removal" | "concentration" | "tracer-time";
+  /** The species; empty for tracer-time. */
   readonly of: string;
-  /** `yield of P from A`, `selectivity of P over S`: the second species. tracer-time: 10, 50, 90. */
+  /** `yield of P from A`, `selectivity of P over S`: the second species. */
   readonly versus: string | undefined;
+  /** tracer-time: 10 for t10. */
   readonly percent: number | undefined;
   readonly at: string | undefined;
 }

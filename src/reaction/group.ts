@@ -1,0 +1,110 @@
+import { Part, type Plant } from "../compile/plant.js";
+import { type BlockMatrix, block, blockMatrix, solveBlocks } from "./block-matrix.js";
+import type { Kinetics } from "./kinetics.js";
+import type { BlockSystem } from "./newton.js";
+import { passTube } from "./tube.js";
+
+/** What reacts where: mixed cells limit what runs out, tubes cut it. */
+export interface Reactions {
+  readonly cell: Kinetics;
+  readonly tube: Kinetics;
+}
+
+/** One link that ends inside a group: from node `from` of the group, or from outside it (-1). */
+interface Inlet {
+  readonly from: number;
+  readonly share: number;
+}
+
+/**
+ * The steady balances of nodes that feed one another: per node, in units of its inflow,
+ *   cell    mix - y + tau R(y) = 0
+ *   delay   Phi(mix) - y = 0, Phi the pass through the tube
+ *   joint   mix - y = 0
+ * where mix is the flow-weighted mean of what enters. y: outflow of each node, scaled, node by node.
+ */
+export interface GroupBalance extends BlockSystem {
+  /** y without any reaction: a start, from one linear solve. Undefined where the flows admit none. */
+  mixed(): Float64Array | undefined;
+}
+
+/**
+ * @param nodes the nodes of the group, by their index in the plant
+ * @param brought scaled concentration times flow that reaches each plant node from outside the group, node by node
+ * @param inlets per node of the group, the links from within it as shares of the node's whole inflow
+ */
+export function groupBalance(
+  plant: Plant,
+  nodes: Int32Array,
+  outside: Float64Array,
+  inlets: readonly (readonly Inlet[])[],
+  inflow: Float64Array,
+  { cell, tube }: Reactions,
+): GroupBalance {
+  const n = cell.size;
+  const count = nodes.length;
+  const tau = Float64Array.from(nodes, (node, k) => plant.nodes[node].volume / inflow[k]);
+  const part = Array.from(nodes, (node) => plant.nodes[node].part);
+  const mix = new Float64Array(n);
+  const made = new Float64Array(n);
+  const slope = new Float64Array(n * n);
+
+  const enter = (y: Float64Array, k: number): void => {
+    for (let i = 0; i < n; i++) mix[i] = outside[k * n + i];
+    for (const { from, share } of inlets[k]) for (let i = 0; i < n; i++) mix[i] += share * y[from * n + i];
+  };
+
+  /** Adds share * scale * through to the block where node k sees node j: through undefined means the identity. */
+  const see = (m: BlockMatrix, k: number, through?: Float64Array): void => {
+    for (const { from, share } of inlets[k]) {
+      const b = block(m, k, from);
+      if (through) for (let e = 0; e < n * n; e++) b[e] += share * through[e];
+      else for (let i = 0; i < n; i++) b[i * n + i] += share;
+    }
+  };
+
+  const minusOne = (m: BlockMatrix, k: number): Float64Array => {
+    const d = block(m, k, k);
+    for (let i = 0; i < n; i++) d[i * n + i] -= 1;
+    return d;
+  };
+
+  return {
+    count,
+    size: n,
+    memory: tau.map((t, k) => (part[k] === Part.Cell ? t : 0)),
+    residual(y, f) {
+      for (let k = 0; k < count; k++) {
+        enter(y, k);
+        if (part[k] === Part.Delay && !passTube(tube, tau[k], mix)) return false;
+        if (part[k] === Part.Cell) cell.production(y, k * n, made, 0);
+        const reacting = part[k] === Part.Cell ? tau[k] : 0;
+        for (let i = 0; i < n; i++) f[k * n + i] = mix[i] - y[k * n + i] + reacting * made[i];
+      }
+      return true;
+    },
+    jacobian(y, m) {
+      for (let k = 0; k < count; k++) {
+        if (part[k] === Part.Delay) {
+          enter(y, k);
+          if (!passTube(tube, tau[k], mix, slope)) return false;
+          see(m, k, slope);
+        } else see(m, k);
+        const d = minusOne(m, k);
+        if (part[k] !== Part.Cell) continue;
+        cell.jacobian(y, k * n, slope, 0);
+        for (let e = 0; e < n * n; e++) d[e] += tau[k] * slope[e];
+      }
+      return true;
+    },
+    mixed() {
+      const m = blockMatrix(count, n);
+      for (let k = 0; k < count; k++) {
+        see(m, k);
+        minusOne(m, k);
+      }
+      const y = outside.map((x) => -x);
+      return solveBlocks(m, y) ? y.map((x) => Math.max(x, 0)) : undefined;
+    },
+  };
+}

@@ -1,0 +1,139 @@
+import type { Reaction } from "../model/chemistry.js";
+import type { Env } from "../model/value.js";
+
+/**
+ * A chemistry at fixed constants and temperature, in scaled concentrations y = c / scale, so that one tolerance suits all
+ * species. The arrays are the caller's; nothing is allocated by a call.
+ */
+export interface Kinetics {
+  /** Number of species. */
+  readonly size: number;
+  /** True where a law asks for more when a reactant has run out (zero order). */
+  readonly endures: boolean;
+  /** Concentration (SI) of y = 1, per species. */
+  readonly scale: Float64Array;
+  /** Writes what reaction makes per second, scaled, at y[at ...] into out[to ...]. */
+  production(y: ArrayLike<number>, at: number, out: Float64Array, to: number): void;
+  /** Writes d production_i / d y_j at y[at ...] into out[to + i * size + j]. */
+  jacobian(y: ArrayLike<number>, at: number, out: Float64Array, to: number): void;
+}
+
+/**
+ * Scaled amount of a reactant below which a law that does not vanish without it (zero order) is let down to nothing, so
+ * that a mixed cell never consumes what is not there.
+ */
+const depleted = 1e-12;
+/** Scaled concentration at which derivatives are taken where it is zero: half-order laws are infinitely steep there. */
+const nearlyNone = 1e-14;
+
+/** What kinetics need of a chemistry. */
+export interface Laws {
+  readonly species: { readonly length: number };
+  readonly reactions: readonly Reaction[];
+}
+
+/**
+ * Binds rate laws to their constants.
+ * @param constants values of the constants and then of the temperature, SI, in slot order after the species
+ * @param scale concentration (SI) that counts as 1, per species, above zero
+ * @param depletion what a law does that still asks for a reactant when that has run out: "limited" ramps it down (in mixed
+ *   cells); "cut" lets it run on below zero and stops it at exactly zero, for a solver that finds the moment (along a tube,
+ *   where a ramp would be stiff)
+ */
+export function bindKinetics(
+  chemistry: Laws,
+  constants: ArrayLike<number>,
+  scale: Float64Array,
+  depletion: "limited" | "cut",
+): Kinetics {
+  const n = chemistry.species.length;
+  const env = new Float64Array(n + constants.length);
+  for (let k = 0; k < constants.length; k++) env[n + k] = constants[k];
+  const reactions = chemistry.reactions.map((reaction) => {
+    const numbers = new Float64Array(n);
+    for (const made of reaction.makes) numbers[made.species] += made.number(env);
+    return { reaction, numbers, persists: persistence(reaction.rate, env, scale, numbers) };
+  });
+  const slope = new Float64Array(n);
+
+  /** Puts the state into the environment; negative concentrations count as none. */
+  const load = (y: ArrayLike<number>, at: number, least: number): void => {
+    for (let i = 0; i < n; i++) env[i] = Math.max(y[at + i], least) * scale[i];
+  };
+
+  const limited = depletion === "limited";
+
+  return {
+    size: n,
+    endures: reactions.some(({ persists }) => persists.includes(1)),
+    scale,
+    production(y, at, out, to) {
+      load(y, at, 0);
+      for (let i = 0; i < n; i++) out[to + i] = 0;
+      for (const { reaction, numbers, persists } of reactions) {
+        const asked = reaction.rate(env);
+        const rate = asked * supply(y, at, asked, numbers, persists, limited);
+        if (rate === 0) continue;
+        for (let i = 0; i < n; i++) out[to + i] += (numbers[i] * rate) / scale[i];
+      }
+    },
+    jacobian(y, at, out, to) {
+      out.fill(0, to, to + n * n);
+      load(y, at, nearlyNone);
+      for (const { reaction, numbers, persists } of reactions) {
+        const rate = reaction.rate(env);
+        reaction.gradient(env, slope);
+        const share = supply(y, at, rate, numbers, persists, limited);
+        for (let j = 0; j < n; j++) {
+          let d = Number.isFinite(slope[j]) ? slope[j] * scale[j] * share : 0;
+          if (limited && persists[j] && consumes(rate, numbers[j]) && y[at + j] < depleted) d += rate / depleted;
+          if (d === 0) continue;
+          for (let i = 0; i < n; i++) out[to + i * n + j] += (numbers[i] * d) / scale[i];
+        }
+      }
+    },
+  };
+}
+
+/** True where a reaction running at this rate uses the species up. */
+const consumes = (rate: number, number: number): boolean => rate * number < 0;
+
+/**
+ * The fraction of its rate that a reaction can keep up with what is left of the reactants that it would ask for even at zero;
+ * the others need no help.
+ */
+function supply(
+  y: ArrayLike<number>,
+  at: number,
+  rate: number,
+  numbers: Float64Array,
+  persists: Uint8Array,
+  limited: boolean,
+): number {
+  let share = 1;
+  for (let i = 0; i < numbers.length; i++) {
+    if (!persists[i] || !consumes(rate, numbers[i])) continue;
+    if (limited) share = Math.min(share, Math.max(y[at + i], 0) / depleted);
+    else if (y[at + i] === 0) share = 0;
+  }
+  return share;
+}
+
+/** Marks the species without which the law still asks for a rate: those need the ramp. */
+function persistence(
+  rate: (env: Env) => number,
+  env: Float64Array,
+  scale: Float64Array,
+  numbers: Float64Array,
+): Uint8Array {
+  const marks = new Uint8Array(numbers.length);
+  for (let i = 0; i < numbers.length; i++) {
+    if (numbers[i] === 0) continue;
+    env.set(scale);
+    env[i] = 0;
+    const asked = rate(env);
+    if (Number.isFinite(asked) && consumes(asked, numbers[i])) marks[i] = 1;
+  }
+  env.fill(0, 0, numbers.length);
+  return marks;
+}

@@ -1,0 +1,154 @@
+import { type BlockMatrix, block, blockMatrix, clear, solveBlocks } from "./block-matrix.js";
+
+/** A square system F(y) = 0 in blocks, y >= 0. */
+export interface BlockSystem {
+  readonly count: number;
+  readonly size: number;
+  /** Time constant of each block, s: what pseudo-time slows down; 0 where the equation has no memory. */
+  readonly memory: Float64Array;
+  /** Writes F(y); false where it cannot be evaluated. */
+  residual(y: Float64Array, f: Float64Array): boolean;
+  /** Adds dF/dy into a matrix of zeros; false where it cannot be evaluated. */
+  jacobian(y: Float64Array, m: BlockMatrix): boolean;
+}
+
+export interface NewtonResult {
+  readonly converged: boolean;
+  /** Largest |F| at the end. */
+  readonly residual: number;
+  /** Index into y of that largest one. */
+  readonly worst: number;
+  readonly iterations: number;
+}
+
+const enough = { relative: 1e-11, absolute: 1e-16, rounding: 1e-10 };
+
+/**
+ * Newton's method with exact Jacobian, halved steps where the residual does not fall, and no component allowed to fall by
+ * more than a factor of ten in a step, so that concentrations stay positive; pseudo-transient continuation where that stalls.
+ * @param y start, overwritten by the best found
+ * @see C.T. Kelley, D.E. Keyes, SIAM J. Numer. Anal. 35 (1998) 508-523 (pseudo-transient continuation)
+ */
+export function solveNewton(system: BlockSystem, y: Float64Array): NewtonResult {
+  const work = workspace(system);
+  const first = iterate(system, work, y, 60);
+  if (first.converged) return first;
+  settle(system, work, y, 400);
+  const second = iterate(system, work, y, 60);
+  return { ...second, iterations: first.iterations + second.iterations };
+}
+
+interface Workspace {
+  readonly m: BlockMatrix;
+  readonly f: Float64Array;
+  readonly step: Float64Array;
+  readonly trial: Float64Array;
+  readonly fTrial: Float64Array;
+}
+
+function workspace({ count, size }: BlockSystem): Workspace {
+  const vector = (): Float64Array => new Float64Array(count * size);
+  return { m: blockMatrix(count, size), f: vector(), step: vector(), trial: vector(), fTrial: vector() };
+}
+
+/** Damped Newton steps until the step no longer matters, or none helps. */
+function iterate(system: BlockSystem, w: Workspace, y: Float64Array, limit: number): NewtonResult {
+  let norm = system.residual(y, w.f) ? size(w.f) : Number.POSITIVE_INFINITY;
+  let small = 0;
+  let iterations = 0;
+  let converged = norm === 0;
+  while (!converged && iterations < limit && Number.isFinite(norm)) {
+    iterations++;
+    if (!newtonStep(system, w, y, 0)) break;
+    const relative = relativeStep(w.step, y);
+    // Near the end rounding decides whether the residual still falls: full steps are then taken as they are.
+    small = relative.largest <= enough.rounding ? small + 1 : 0;
+    const next = small > 0 ? take(system, w, y, 1) : descend(system, w, y, norm);
+    if (next === undefined) break;
+    norm = next;
+    converged = relative.done || small >= 3;
+  }
+  return { converged, residual: norm, worst: largestAt(w.f), iterations };
+}
+
+/** Implicit Euler steps in pseudo-time, lengthened as the residual falls (switched evolution relaxation). */
+function settle(system: BlockSystem, w: Workspace, y: Float64Array, limit: number): void {
+  if (!system.residual(y, w.f)) return;
+  let norm = size(w.f);
+  let pace = Math.min(...Array.from(system.memory).filter((m) => m > 0)) / 10;
+  if (!Number.isFinite(pace)) return;
+  for (let k = 0; k < limit && norm > 1e-12; k++) {
+    if (!newtonStep(system, w, y, 1 / pace)) return;
+    const next = take(system, w, y, 1);
+    if (next === undefined) {
+      pace /= 4;
+      if (!system.residual(y, w.f)) return;
+      continue;
+    }
+    pace *= Math.min(Math.max(norm / next, 0.2), 3);
+    norm = next;
+  }
+}
+
+/** step = -(dF/dy - memory rate)^-1 F; `rate` in 1/s, 0 for Newton. */
+function newtonStep(system: BlockSystem, w: Workspace, y: Float64Array, rate: number): boolean {
+  const { count, size: n, memory } = system;
+  clear(w.m);
+  if (!system.jacobian(y, w.m)) return false;
+  if (rate > 0) {
+    for (let k = 0; k < count; k++) {
+      const diagonal = block(w.m, k, k);
+      for (let i = 0; i < n; i++) diagonal[i * n + i] -= memory[k] * rate;
+    }
+  }
+  for (let i = 0; i < w.step.length; i++) w.step[i] = -w.f[i];
+  return solveBlocks(w.m, w.step) && w.step.every(Number.isFinite);
+}
+
+/** Halves the step until the residual falls; undefined where it never does. */
+function descend(system: BlockSystem, w: Workspace, y: Float64Array, norm: number): number | undefined {
+  for (let share = 1; share > 1e-6; share /= 2) {
+    const next = take(system, w, y, share, norm * (1 - 1e-4 * share));
+    if (next !== undefined) return next;
+  }
+  return undefined;
+}
+
+/** Moves y by a share of the step, kept positive; undefined (and y as it was) where the new norm exceeds `below`. */
+function take(
+  system: BlockSystem,
+  w: Workspace,
+  y: Float64Array,
+  share: number,
+  below = Number.POSITIVE_INFINITY,
+): number | undefined {
+  for (let i = 0; i < y.length; i++) w.trial[i] = Math.max(y[i] + share * w.step[i], 0.1 * y[i]);
+  const norm = system.residual(w.trial, w.fTrial) ? size(w.fTrial) : Number.NaN;
+  if (!(norm <= below) || !Number.isFinite(norm)) return undefined;
+  y.set(w.trial);
+  w.f.set(w.fTrial);
+  return norm;
+}
+
+function relativeStep(step: Float64Array, y: Float64Array): { largest: number; done: boolean } {
+  let largest = 0;
+  let done = true;
+  for (let i = 0; i < y.length; i++) {
+    const d = Math.abs(step[i]);
+    largest = Math.max(largest, d);
+    if (d > enough.relative * Math.abs(y[i]) + enough.absolute) done = false;
+  }
+  return { largest, done };
+}
+
+function size(f: Float64Array): number {
+  let sum = 0;
+  for (let i = 0; i < f.length; i++) sum += f[i] * f[i];
+  return Math.sqrt(sum);
+}
+
+function largestAt(f: Float64Array): number {
+  let at = 0;
+  for (let i = 1; i < f.length; i++) if (!(Math.abs(f[i]) <= Math.abs(f[at]))) at = i;
+  return at;
+}
