@@ -1,7 +1,7 @@
 /** What can be wrong with a written value, with the data that its wording needs. */
 export interface FaultData {
   "bad-number": { text: string; why: string; fix: string };
-  "missing-space": { text: string; fix: string };
+  "space-before-unit": { text: string; fix: string };
   "unknown-unit": { part: string; unit: string; nearest: string | undefined };
   "bad-unit": { unit: string };
   "offset-unit": { unit: string; part: string };

@@ -71,7 +71,7 @@ function readNumber(text: string, from: number, to: number, inCall: boolean): To
   if (/[\p{L}%°℃℉_]/u.test(next)) {
     const end = unitEnd(text, to);
     return {
-      code: "missing-space",
+      code: "space-before-unit",
       from,
       to: end,
       data: { text: text.slice(from, end), fix: `write \`${written} ${text.slice(to, end)}\`` },
@@ -88,7 +88,7 @@ function readNumber(text: string, from: number, to: number, inCall: boolean): To
 /** Numbers that YAML, other languages or other habits would read otherwise than as plain decimals. */
 function oddNumber(text: string, from: number, to: number, inCall: boolean): Fault | undefined {
   const rest = text.slice(from);
-  const other = /^0[xXoObB][\da-fA-F]+/.exec(rest);
+  const other = /^0(?:x[\da-f]+|o[0-7]+|b[01]+)\b/i.exec(rest);
   if (other)
     return badNumber(text, from, from + other[0].length, "is not decimal", `write ${decimal(Number(other[0]))}`);
   const grouped = /^\d+(?:_\d+)+(?:\.\d+)?/.exec(rest) ?? /^\d+(?:['’]\d{3})+(?:\.\d+)?/.exec(rest);
@@ -107,6 +107,8 @@ function oddNumber(text: string, from: number, to: number, inCall: boolean): Fau
     const plain = text.slice(from, to).replace(/^0+(?=\d)/, "");
     return badNumber(text, from, to, "begins with a zero, which some programs read as octal", `write ${plain}`);
   }
+  const points = /^\d*(?:\.\d+){2,}/.exec(rest);
+  if (points) return badNumber(text, from, from + points[0].length, "has two points", "write one decimal point");
   if (text[to] === "." && !/\d/.test(text[to + 1] ?? ""))
     return badNumber(text, from, to + 1, "ends with a point", `write ${text.slice(from, to)}`);
   return undefined;

@@ -1,6 +1,6 @@
 import { type Expression, namesIn, type Uncertainty, visit, type WrittenValue } from "../expressions/ast.js";
 import { compileExpression } from "../expressions/compile.js";
-import { dimensionOf } from "../expressions/dimension-of.js";
+import { dimensionOf, scalePoints } from "../expressions/dimension-of.js";
 import { type Fault, isFault } from "../expressions/fault.js";
 import { parseExpression, parseValue, parseWrittenUnit } from "../expressions/parse.js";
 import type { Env, Value } from "../model/value.js";
@@ -10,6 +10,7 @@ import { nearest } from "../text/nearest.js";
 import type { Span } from "../text/source.js";
 import { nameDimension } from "../units/describe.js";
 import { type Dimension, dimensions, isRatio, sameDimension } from "../units/dimension.js";
+import { symbols } from "../units/table.js";
 import type { Unit } from "../units/unit.js";
 import { spanWithin } from "./span.js";
 import { describeWanted, exampleOf, fits, type Wanted } from "./wanted.js";
@@ -111,8 +112,8 @@ export function reportFault(node: ScalarNode, fault: Fault, report: Report): und
 function scalarOf(node: Tree | undefined, wanted: Wanted, report: Report): ScalarNode | undefined {
   if (!node) return undefined;
   if (node.type === "scalar" && !node.empty && node.text.trim() !== "") return node;
-  const found = node.type === "map" ? "a block of keys" : node.type === "list" ? "a list" : "nothing";
-  report("not-a-value", node.at, { found, wanted: describeWanted(wanted), example: exampleOf(wanted) });
+  const found = node.type === "map" ? "a map" : node.type === "list" ? "a list" : "nothing";
+  report("wrong-shape", node.at, { key: "a value", found, wanted: describeWanted(wanted), example: undefined });
   return undefined;
 }
 
@@ -124,11 +125,9 @@ function namesKnown(node: ScalarNode, e: Expression, scope: Scope, report: Repor
     known = false;
     const names = scope.names();
     const at = spanWithin(node, part.at.from, part.at.to);
-    report("unknown-name", at, {
-      name: part.name,
-      nearest: nearest(part.name, names),
-      minus: asMinus(part.name, scope),
-    });
+    const near = nearest(part.name, names);
+    const unit = symbols.has(part.name);
+    report("unknown-name", at, { name: part.name, nearest: near, minus: asMinus(part.name, scope), unit });
   });
   return known;
 }
@@ -161,12 +160,13 @@ function wrongDimension(node: ScalarNode, e: Expression, got: Dimension, wanted:
   return undefined;
 }
 
-/** The unit first written that has the dimension of the whole. */
+/** The unit first written that has the dimension of the whole; degC only where the whole is a point on that scale. */
 function unitFor(e: Expression, dimension: Dimension): Unit | undefined {
   let unit: Unit | undefined;
+  const isPoint = scalePoints(e) === 1;
   visit(e, (part) => {
-    if (part.type === "number" && part.unit.name !== "" && sameDimension(part.unit.dimension, dimension))
-      unit ??= part.unit;
+    if (part.type !== "number" || part.unit.name === "" || !sameDimension(part.unit.dimension, dimension)) return;
+    if (part.unit.offset === 0 || isPoint) unit ??= part.unit;
   });
   return unit;
 }

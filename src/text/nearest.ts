@@ -1,28 +1,34 @@
-/** The candidate that a word was probably meant to be, or undefined where none is close. Case counts a little, letters more. */
-export function nearest(word: string, candidates: Iterable<string>): string | undefined {
+/**
+ * The candidate that a mistyped name most likely meant, or undefined where none is near.
+ * Distance after Damerau (Commun. ACM 7 (1964) 171-176), restricted to adjacent transpositions; a change of case costs half.
+ * Near: up to a third of the letters, and at most 3.
+ */
+export function nearest(name: string, candidates: Iterable<string>): string | undefined {
   let best: string | undefined;
-  let least = word.length <= 2 ? 1 : word.length <= 5 ? 1.5 : word.length <= 8 ? 2.5 : 3;
+  let least = Number.POSITIVE_INFINITY;
   for (const candidate of candidates) {
-    const far = distance(word, candidate);
-    if (far < least || (far === least && best === undefined)) {
-      least = far;
+    if (candidate === name) continue;
+    const limit = Math.min(3, Math.max(1, Math.max(name.length, candidate.length) / 3));
+    if (Math.abs(name.length - candidate.length) > limit) continue;
+    const d = distance(name, candidate);
+    if (d <= limit && d < least && d < Math.max(name.length, candidate.length)) {
+      least = d;
       best = candidate;
     }
   }
   return best;
 }
 
-/** Optimal string alignment: edits and neighbours swapped count 1, a change of case 0.2 (Damerau 1964). */
-function distance(a: string, b: string): number {
-  if (Math.abs(a.length - b.length) > 3) return Number.POSITIVE_INFINITY;
+/** Edits (insert, delete, replace, swap neighbours) from one word to the other. */
+export function distance(a: string, b: string): number {
   let before: number[] = [];
   let last = Array.from({ length: b.length + 1 }, (_, j) => j);
   for (let i = 1; i <= a.length; i++) {
     const row = [i];
     for (let j = 1; j <= b.length; j++) {
-      let cost = Math.min(last[j] + 1, row[j - 1] + 1, last[j - 1] + change(a[i - 1], b[j - 1]));
-      if (i > 1 && j > 1 && a[i - 1] === b[j - 2] && a[i - 2] === b[j - 1]) cost = Math.min(cost, before[j - 2] + 1);
-      row.push(cost);
+      let d = Math.min(last[j] + 1, row[j - 1] + 1, last[j - 1] + replacing(a[i - 1], b[j - 1]));
+      if (i > 1 && j > 1 && a[i - 1] === b[j - 2] && a[i - 2] === b[j - 1]) d = Math.min(d, before[j - 2] + 1);
+      row.push(d);
     }
     before = last;
     last = row;
@@ -30,4 +36,4 @@ function distance(a: string, b: string): number {
   return last[b.length];
 }
 
-const change = (x: string, y: string): number => (x === y ? 0 : x.toLowerCase() === y.toLowerCase() ? 0.2 : 1);
+const replacing = (a: string, b: string): number => (a === b ? 0 : a.toLowerCase() === b.toLowerCase() ? 0.5 : 1);

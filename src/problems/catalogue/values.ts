@@ -8,7 +8,7 @@ export const valueEntries = {
     says: (d) => `\`${d.text}\` ${d.why}`,
     fix: (d) => d.fix,
   }),
-  "missing-space": entry<FaultData["missing-space"]>({
+  "space-before-unit": entry<FaultData["space-before-unit"]>({
     severity: "error",
     says: (d) => `\`${d.text}\` has no space between the number and what follows`,
     fix: (d) => d.fix,
@@ -61,11 +61,6 @@ export const valueEntries = {
     fix: "divide it by a value of the same kind first",
   }),
 
-  "not-a-value": entry<{ found: string; wanted: string; example: string }>({
-    severity: "error",
-    says: (d) => `${d.found} stands where ${d.wanted} is wanted`,
-    fix: (d) => `write one value, like \`${d.example}\``,
-  }),
   "missing-unit": entry<{ text: string; wanted: string; fixed: string; zero: boolean }>({
     severity: "error",
     says: (d) => `\`${d.text}\` has no unit; ${d.wanted} is wanted`,
@@ -76,14 +71,21 @@ export const valueEntries = {
     says: (d) => `\`${d.text}\` is ${d.got}; ${d.wanted} is wanted`,
     fix: (d) => (d.example ? `write a value like \`${d.example}\`` : "write a plain number or share, without a unit"),
   }),
-  "unknown-name": entry<{ name: string; nearest: string | undefined; minus: string | undefined }>({
+  "unknown-name": entry<{
+    name: string;
+    nearest: string | undefined;
+    minus: string | undefined;
+    unit: boolean;
+  }>({
     severity: "error",
     says: (d) => `there is no constant, parameter or other value named \`${d.name}\``,
     fix: (d) =>
       d.minus
         ? `a minus has spaces around it: did you mean \`${d.minus}\`?`
-        : d.nearest
-          ? `did you mean \`${d.nearest}\`?`
-          : "declare it under `constants` or `parameters`",
+        : d.unit
+          ? `\`${d.name}\` is a unit: it stands after a number, and has no space inside, like \`10 L/min\``
+          : d.nearest
+            ? `did you mean \`${d.nearest}\`?`
+            : "declare it under `constants` or `parameters`",
   }),
 } as const;
