@@ -63,7 +63,7 @@ export function integrateByOdex(p: Stretch, y: Float64Array, output: (y: Float64
 
   const time = (s: number): number => {
     const offset = s * Math.abs(span);
-    return p.from + Math.sign(span) * (offset < nudge ? nudge : offset > last ? last : offset);
+    return p.from + Math.sign(span) * Math.max(nudge, Math.min(offset, last));
   };
   const rhs = (s: number, values: number[]): Float64Array => {
     evaluations++;
