@@ -1,4 +1,4 @@
-import type { Tree } from "../read/tree.js";
+import type { MapNode } from "../read/tree.js";
 import type { Span } from "../text/source.js";
 import type { Duty } from "./duty.js";
 import type { Network } from "./network.js";
@@ -9,15 +9,28 @@ export interface Study {
   readonly title: string;
   readonly at: Span;
   readonly path: string;
-  readonly rivals: readonly { readonly network: Network; readonly tree: Tree; readonly path: string }[];
+  readonly notes: string | undefined;
+  readonly rivals: readonly Rival[];
   readonly trials: readonly Trial[];
   readonly duties: readonly Duty[];
-  readonly changes: readonly {
-    readonly title: string;
-    readonly path: string;
-    readonly tree: Tree;
-    readonly at: Span;
-  }[];
+  readonly changes: readonly ChangeDocument[];
   readonly out: string | undefined;
   readonly seed: number;
+}
+
+/** A network that competes to explain the trials, with the tree that changes are merged into. */
+export interface Rival {
+  readonly network: Network;
+  readonly tree: MapNode;
+  readonly path: string;
+}
+
+/** A change to compare: `change:` of a network document without a vessel of its own. */
+export interface ChangeDocument {
+  readonly title: string;
+  readonly path: string;
+  readonly notes: string | undefined;
+  readonly at: Span;
+  /** What to merge into a rival. */
+  readonly change: MapNode;
 }

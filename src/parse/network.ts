@@ -4,7 +4,7 @@ import { evaluateNames } from "../compile/evaluate.js";
 import type { Network } from "../model/network.js";
 import type { Problem } from "../problems/problem.js";
 import { collector, hasErrors } from "../problems/report.js";
-import type { MapNode } from "../read/tree.js";
+import { child, type MapNode, textOf } from "../read/tree.js";
 import { resolveNetwork } from "../resolve/network.js";
 import { cornerWarnings } from "./corners.js";
 import { type Parsed, type ParseOptions, parseDocument } from "./parsed.js";
@@ -20,7 +20,11 @@ export interface NetworkDocument extends Network {
  */
 export function parseNetwork(text: string, options: ParseOptions = {}): Parsed<NetworkDocument> {
   const path = options.path ?? "network.yaml";
-  return parseDocument("network", text, path, (tree, _report, adopt) => {
+  return parseDocument("network", text, path, (tree, report, adopt) => {
+    if (child(tree, "change") && !child(tree, "feeds")) {
+      report("change-only", child(tree, "change")?.at ?? tree.at, { title: textOf(tree, "network") ?? "" });
+      return undefined;
+    }
     const { network, problems } = networkFromTree(tree, path);
     adopt(problems);
     return network;

@@ -4,6 +4,7 @@ import { flowEntries } from "./catalogue/flows.js";
 import { nameEntries } from "./catalogue/names.js";
 import { runEntries } from "./catalogue/runs.js";
 import { shapeEntries } from "./catalogue/shape.js";
+import { studyEntries } from "./catalogue/study.js";
 import { valueEntries } from "./catalogue/values.js";
 import { yamlEntries } from "./catalogue/yaml.js";
 
@@ -17,4 +18,5 @@ export const catalogue = {
   ...dataEntries,
   ...chemistryEntries,
   ...runEntries,
+  ...studyEntries,
 } as const;

@@ -1,17 +1,15 @@
-import { parseValue } from "../expressions/parse.js";
 import type { Expression } from "../expressions/ast.js";
+import { parseValue } from "../expressions/parse.js";
 import type { Named } from "../model/network.js";
 import type { Value } from "../model/value.js";
 import type { Report } from "../problems/report.js";
-import { child, entriesOf, type MapNode, type ScalarNode, textOf, type Tree } from "../read/tree.js";
+import { child, entriesOf, type MapNode, type ScalarNode, type Tree, textOf } from "../read/tree.js";
 import type { Span } from "../text/source.js";
-import { type Dimension, dimensions, type DimensionName } from "../units/dimension.js";
+import { type Dimension, type DimensionName, dimensions } from "../units/dimension.js";
 import { resolveValue, type Scope } from "./value.js";
 
 /** Words that cannot name anything: language.md, "Names". */
-const reserved = new Set(
-  "rest all t T pi gas-constant exp log log10 sqrt abs min max tanh step-up".split(" "),
-);
+const reserved = new Set("rest all t T pi gas-constant exp log log10 sqrt abs min max tanh step-up".split(" "));
 
 /** Reports a name that breaks the rules; true where it is fine. */
 export function checkName(key: ScalarNode, report: Report): boolean {
@@ -64,27 +62,54 @@ export function resolveNames(tree: MapNode, report: Report): ResolvedNames {
 function declare(tree: MapNode, report: Report): Declared[] {
   const declared: Declared[] = [];
   const seen = new Map<string, Declared>();
-  for (const [key, role] of [["constants", "constant"], ["parameters", "parameter"]] as const) {
+  for (const [key, role] of [
+    ["constants", "constant"],
+    ["parameters", "parameter"],
+  ] as const) {
     for (const { key: name, value } of entriesOf(child(tree, key))) {
       if (!checkName(name, report)) continue;
       const earlier = seen.get(name.text);
       if (earlier) {
-        report("name-taken", name.at, { name: name.text, by: `a ${earlier.role}` }, { at: earlier.at, says: "declared first here" });
+        report(
+          "name-taken",
+          name.at,
+          { name: name.text, by: `a ${earlier.role}` },
+          { at: earlier.at, says: "declared first here" },
+        );
         continue;
       }
       const node = value.type === "map" ? child(value, "value") : value;
-      const entry: Declared = { name: name.text, role, at: name.at, node, wanted: "any", details: value.type === "map" ? value : undefined };
+      const entry: Declared = {
+        name: name.text,
+        role,
+        at: name.at,
+        node,
+        wanted: "any",
+        details: value.type === "map" ? value : undefined,
+      };
       seen.set(name.text, entry);
       declared.push(entry);
     }
   }
   for (const { key: name, value } of entriesOf(child(tree, "feeds"))) {
-    declared.push({ name: `${name.text}.flow`, role: "feed-flow", at: name.at, node: child(value, "flow"), wanted: dimensions.flow, details: undefined });
+    declared.push({
+      name: `${name.text}.flow`,
+      role: "feed-flow",
+      at: name.at,
+      node: child(value, "flow"),
+      wanted: dimensions.flow,
+      details: undefined,
+    });
   }
   return declared;
 }
 
-function details(d: Declared, value: Value, scope: Scope, report: Report): Pick<Named, "between" | "spacing" | "about"> {
+function details(
+  d: Declared,
+  value: Value,
+  scope: Scope,
+  report: Report,
+): Pick<Named, "between" | "spacing" | "about"> {
   const spacing = textOf(d.details, "spacing") === "log" ? "log" : "linear";
   const about = textOf(d.details, "about");
   const node = child(d.details, "between");
@@ -125,7 +150,7 @@ function dependencyOrder(declared: readonly Declared[], slots: ReadonlyMap<strin
     if (good && state[i] === 2) order.push(i);
     return good && state[i] === 2;
   };
-  declared.forEach((_, i) => visit(i));
+  for (const i of declared.keys()) visit(i);
   return order;
 }
 
@@ -145,5 +170,7 @@ function namesIn(node: Tree | undefined): string[] {
 }
 
 /** Dimension by its name, or names. */
-export const dimensionsOf = (name: DimensionName | readonly DimensionName[] | "any"): Dimension | readonly Dimension[] | "any" =>
+export const dimensionsOf = (
+  name: DimensionName | readonly DimensionName[] | "any",
+): Dimension | readonly Dimension[] | "any" =>
   name === "any" ? "any" : typeof name === "string" ? dimensions[name] : name.map((n) => dimensions[n]);

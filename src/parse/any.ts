@@ -1,0 +1,42 @@
+import type { Problem } from "../problems/problem.js";
+import { collector } from "../problems/report.js";
+import { checkShape, documentKind } from "../read/shape.js";
+import { child, type MapNode } from "../read/tree.js";
+import { readYaml } from "../read/yaml.js";
+import type { DocumentKind } from "../schema/shape.js";
+import { parseChemistry } from "./chemistry.js";
+import { parseDuty } from "./duty.js";
+import { type NetworkDocument, parseNetwork } from "./network.js";
+import type { ParseOptions } from "./parsed.js";
+import { parseChange, parseStudy } from "./study.js";
+import { parseTrial } from "./trial.js";
+
+/** What a file turned out to be, and everything wrong with it. */
+export interface AnyDocument {
+  readonly kind: DocumentKind | "change" | undefined;
+  readonly network: NetworkDocument | undefined;
+  readonly problems: readonly Problem[];
+}
+
+/** Reads any of the five documents, told apart by the first key; a network that is only a change is one too. */
+export function parseAny(text: string, options: ParseOptions = {}): AnyDocument {
+  const { report, problems } = collector();
+  const tree = readYaml({ path: options.path ?? "-", text }, report);
+  if (!tree) return { kind: undefined, network: undefined, problems };
+  const kind = documentKind(tree);
+  if (kind === "network" && isChange(tree)) {
+    return { kind: "change", network: undefined, problems: parseChange(text, options).problems };
+  }
+  if (kind === "network") {
+    const parsed = parseNetwork(text, options);
+    return { kind, network: parsed.document, problems: parsed.problems };
+  }
+  if (kind === undefined) {
+    checkShape(tree, "network", report);
+    return { kind, network: undefined, problems };
+  }
+  const parse = { trial: parseTrial, chemistry: parseChemistry, duty: parseDuty, study: parseStudy }[kind];
+  return { kind, network: undefined, problems: parse(text, options).problems };
+}
+
+const isChange = (tree: MapNode): boolean => child(tree, "change") !== undefined && child(tree, "feeds") === undefined;

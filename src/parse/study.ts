@@ -1,0 +1,87 @@
+import { checkDuty } from "../check/duty.js";
+import { checkTrial } from "../check/trial.js";
+import type { ChangeDocument, Rival, Study } from "../model/study.js";
+import { collector, hasErrors, type Report } from "../problems/report.js";
+import { decodeText } from "../read/decode.js";
+import { beside } from "../read/paths.js";
+import { checkShape } from "../read/shape.js";
+import { child, itemsOf, type MapNode, type ScalarNode, textOf } from "../read/tree.js";
+import { readYaml } from "../read/yaml.js";
+import { parseDuty } from "./duty.js";
+import { parseNetwork } from "./network.js";
+import { nothingToRead, type Parsed, type ParseOptions, parseDocument, type Read } from "./parsed.js";
+import { parseTrial } from "./trial.js";
+
+/** Reads a study and every document that it names; problems of all of them together, file by file. */
+export function parseStudy(text: string, options: ParseOptions = {}): Parsed<Study> {
+  const path = options.path ?? "study.yaml";
+  const read = options.read ?? nothingToRead;
+  return parseDocument("study", text, path, (tree, report, adopt) => {
+    const open = <T>(
+      key: string,
+      parse: (text: string, options: ParseOptions) => Parsed<T>,
+    ): (T & { file: string })[] =>
+      filesUnder(tree, key, path, read, report).flatMap(({ file, content }) => {
+        const parsed = parse(content, { path: file, read });
+        adopt(parsed.problems);
+        return parsed.document ? [{ ...parsed.document, file }] : [];
+      });
+    const rivals = open("rivals", parseNetwork).map((n): Rival => ({ network: n, tree: n.tree, path: n.file }));
+    const trials = open("trials", parseTrial);
+    const duties = open("duties", parseDuty);
+    const changes = open("changes", parseChange);
+    for (const { network } of rivals) {
+      const { report: own, problems } = collector();
+      for (const trial of trials) checkTrial(network, trial, own);
+      for (const duty of duties) checkDuty(network, duty, own);
+      // The same slip shows against every rival: once is enough.
+      if (hasErrors(problems)) {
+        adopt(problems);
+        break;
+      }
+    }
+    return {
+      title: textOf(tree, "study") ?? "",
+      at: child(tree, "study")?.at ?? tree.at,
+      path,
+      notes: textOf(tree, "notes"),
+      rivals,
+      trials,
+      duties,
+      changes,
+      out: textOf(tree, "out"),
+      seed: Number(textOf(tree, "seed") ?? 1),
+    };
+  });
+}
+
+interface NamedFile {
+  readonly file: string;
+  readonly content: string;
+}
+
+function filesUnder(tree: MapNode, key: string, path: string, read: Read, report: Report): NamedFile[] {
+  const named = itemsOf(child(tree, key)).filter((item): item is ScalarNode => item.type === "scalar");
+  return named.flatMap((item) => {
+    const file = beside(path, item.text);
+    const content = read(file);
+    if (content === undefined) report("file-missing", item.at, { file: item.text });
+    return content === undefined ? [] : [{ file, content: decodeText(content) }];
+  });
+}
+
+/** A network document that is only a `change:`. */
+export function parseChange(text: string, options: ParseOptions = {}): Parsed<ChangeDocument> {
+  const path = options.path ?? "change.yaml";
+  const { report, problems } = collector();
+  const tree = readYaml({ path, text }, report);
+  if (!tree || !checkShape(tree, "network", report)) return { document: undefined, problems };
+  const change = child(tree, "change");
+  const title = child(tree, "network") ?? tree;
+  if (change?.type !== "map") {
+    report("no-change", title.at, { title: textOf(tree, "network") ?? "" });
+    return { document: undefined, problems };
+  }
+  const document = { title: textOf(tree, "network") ?? "", path, notes: textOf(tree, "notes"), at: title.at, change };
+  return { document, problems };
+}
