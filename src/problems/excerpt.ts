@@ -93,4 +93,4 @@ function widthOf(letter: string): number {
 
 /** Control characters would move the cursor, or worse: they are shown as a sign. */
 export const harmless = (text: string): string =>
-  text.replace(/[\p{Cc}\u2028\u2029\u202a-\u202e\u2066-\u2069\ufeff]/gu, "�");
+  text.replace(/\s*[\r\n]\s*/g, " ").replace(/[\p{Cc}\u2028\u2029\u202a-\u202e\u2066-\u2069\ufeff]/gu, "�");

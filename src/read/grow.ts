@@ -1,7 +1,7 @@
 import { type Alias, type Document, isAlias, isMap, isScalar, isSeq, type Node, type Pair } from "yaml";
 import type { Report } from "../problems/report.js";
 import type { Source, Span } from "../text/source.js";
-import { quote } from "./syntax.js";
+import { quote } from "./lines.js";
 import type { Entry, ListNode, MapNode, ScalarNode, Tree } from "./tree.js";
 
 /** Brackets and indents may nest so deep. */

@@ -1,110 +1,121 @@
-import type { YAMLParseError } from "yaml";
+import type { ErrorCode, YAMLParseError } from "yaml";
 import type { Report } from "../problems/report.js";
 import { lineText, placeOf, type Source, type Span } from "../text/source.js";
+import { reportColon, reportGlued, type SyntaxFault } from "./colons.js";
+import { lineStart, quote, restOfLine } from "./lines.js";
+import { firstUnclosed } from "./openings.js";
 
 /** Words the faults that the YAML parser found. One finding a line: what follows the first is mostly its echo. */
 export function reportSyntax(source: Source, errors: readonly YAMLParseError[], report: Report): void {
   const lines = new Set<number>();
+  const said = new Set<number>();
   for (const error of [...errors].sort((a, b) => a.pos[0] - b.pos[0])) {
     const at: Span = { source, from: error.pos[0], to: Math.max(error.pos[1], error.pos[0] + 1) };
     const { line } = placeOf(at);
     if (lines.has(line)) continue;
     lines.add(line);
-    reportOne(at, error, report);
+    const opening = closingIsMissing(error) ? firstUnclosed(source.text) : undefined;
+    if (opening && said.has(opening.at)) continue;
+    if (opening) said.add(opening.at);
+    const word = words[error.code] ?? other;
+    if (opening) reportUnclosed(source, opening, report);
+    else word({ at, here: toLineEnd(at), error, report });
+    // What stands after an opening that nothing closes was read as part of it.
+    if (opening) return;
   }
 }
 
-function reportOne(at: Span, error: YAMLParseError, report: Report): void {
-  const { source, from } = at;
-  const toLineEnd = restOfLine(source.text, from);
-  const here = { ...at, to: from + Math.max(1, toLineEnd.trimEnd().length) };
-  switch (error.code) {
-    case "TAB_AS_INDENT":
-      return report("tab-indent", at, {});
-    case "BAD_INDENT":
-      return /\t/.test(source.text.slice(lineStart(source.text, from), from + 1))
-        ? report("tab-indent", at, {})
-        : report("bad-indent", here, {});
-    case "MULTIPLE_DOCS":
-      return report("two-documents", here, {});
-    case "BAD_SCALAR_START": {
-      const text = plainText(toLineEnd);
-      return report(
-        "leading-character",
-        { ...at, to: from + text.length },
-        { character: source.text[from], quoted: quote(text) },
-      );
-    }
-    case "BLOCK_AS_IMPLICIT_KEY":
-    case "MULTILINE_IMPLICIT_KEY":
-      return reportColon(at, error, report);
-    case "MISSING_CHAR":
-      return reportMissing(at, error, report);
-    case "BAD_DQ_ESCAPE":
-      return report("yaml-syntax", at, {
-        says: "a backslash in double quotes begins an escape that YAML does not have",
-        fix: "use single quotes, in which a backslash is a backslash",
-      });
-    case "BAD_DIRECTIVE":
-      return report("yaml-syntax", here, {
-        says: "a line that begins with `%` is a YAML directive, which no document uses",
-        fix: "remove it; a comment begins with `#`",
-      });
-    default:
-      return report("yaml-syntax", here, {
-        says: "this is not YAML as it stands",
-        fix: `look at the characters around the mark; the parser says: ${plainSentence(error.message)}`,
-      });
-  }
-}
+const closingIsMissing = ({ message }: YAMLParseError): boolean =>
+  /Missing closing|must end with a|and end with a/.test(message);
 
-/** `network: V-3: as built`, or a key whose value began on the line before. */
-function reportColon(at: Span, error: YAMLParseError, report: Report): void {
-  const text = lineText(at.source, placeOf(at).line);
-  const split = /^(\s*(?:- )?[^:#]+?:\s+)(\S.*?: .*?|\S.*?:)(\s+#.*)?$/.exec(text);
-  const start = lineStart(at.source.text, at.from);
-  if (split && !/^["'[{]/.test(split[2])) {
-    const from = start + split[1].length;
-    return report(
-      "colon-in-text",
-      { source: at.source, from, to: from + split[2].length },
-      { quoted: quote(split[2]) },
-    );
-  }
-  report("yaml-syntax", at, {
-    says: "a key and its value must stand on one line, with a colon and a space between",
-    fix: `look for a missing colon on this line or the one before; the parser says: ${plainSentence(error.message)}`,
-  });
-}
-
-const pairs: Record<string, string> = {
-  "}": "a brace",
-  "]": "a bracket",
+const openerWords: Record<string, string> = {
+  "{": "a brace",
+  "[": "a bracket",
   '"': "a double quote",
   "'": "a single quote",
 };
 
-function reportMissing(at: Span, error: YAMLParseError, report: Report): void {
-  const closing = /(?:with a|closing) ?(["'\]}])|expected .*?([\]}])/.exec(error.message);
-  const found = closing?.[1] ?? closing?.[2] ?? /(["'])quote/.exec(error.message)?.[1];
-  if (found && found in pairs) return report("unclosed", at, { what: pairs[found], closing: found });
-  report("yaml-syntax", at, {
-    says: "something is missing here",
-    fix: `the parser says: ${plainSentence(error.message)}`,
-  });
+function reportUnclosed(
+  source: Source,
+  opening: { at: number; opener: string; closing: string },
+  report: Report,
+): void {
+  const at = toLineEnd({ source, from: opening.at, to: opening.at + 1 });
+  const comment = /\s#/.test(source.text.slice(at.from, lineEndOf(at)));
+  report("unclosed", at, { what: openerWords[opening.opener], closing: opening.closing, comment });
 }
 
-/** A text in quotes such that YAML reads it back: single ones unless it has such itself. */
-export const quote = (text: string): string => (text.includes('"') ? `'${text.replace(/'/g, "''")}'` : `"${text}"`);
+const lineEndOf = ({ source, from }: Span): number => from + restOfLine(source.text, from).length;
+
+function toLineEnd(at: Span): Span {
+  const rest = restOfLine(at.source.text, at.from).trimEnd();
+  return { ...at, to: at.from + Math.max(1, rest.length) };
+}
+
+const words: Partial<Record<ErrorCode, (fault: SyntaxFault) => void>> = {
+  TAB_AS_INDENT: ({ at, report }) => report("tab-indent", at, {}),
+  BAD_INDENT: ({ at, here, report }) => {
+    const before = at.source.text.slice(lineStart(at.source.text, at.from), at.from + 1);
+    if (before.includes("\t")) report("tab-indent", at, {});
+    else report("bad-indent", here, {});
+  },
+  MULTIPLE_DOCS: ({ here, report }) => report("two-documents", here, {}),
+  BAD_SCALAR_START: ({ at, report }) => reportLeading(at, report),
+  BLOCK_AS_IMPLICIT_KEY: reportColon,
+  MULTILINE_IMPLICIT_KEY: reportColon,
+  RESOURCE_EXHAUSTION: ({ at, report }) => report("too-deep", { ...at, to: at.from + 1 }, { limit: 100 }),
+  BAD_DQ_ESCAPE: ({ at, report }) =>
+    report("yaml-syntax", at, {
+      says: "a backslash in double quotes begins an escape that YAML does not have",
+      fix: "use single quotes, in which a backslash is a backslash",
+    }),
+  BAD_DIRECTIVE: ({ here, report }) =>
+    report("yaml-syntax", here, {
+      says: "a line that begins with `%` is a YAML directive, which no document uses",
+      fix: "remove it; a comment begins with `#`",
+    }),
+};
+
+function reportLeading(at: Span, report: Report): void {
+  const text = plainText(restOfLine(at.source.text, at.from));
+  const span = { ...at, to: at.from + text.length };
+  report("leading-character", span, { character: text[0], quoted: quote(text) });
+}
+
+/** `|` and `>` begin a text block, whose text starts on the next line. */
+function blockHeader({ source, from }: Span): Span | undefined {
+  const start = lineStart(source.text, from);
+  const header = /^(.*?(?::|-)\s+)[|>]/.exec(lineText(source, placeOf({ source, from, to: from }).line));
+  return header ? { source, from: start + header[1].length, to: from } : undefined;
+}
+
+function other({ at, here, error, report }: SyntaxFault): void {
+  const header = /Not a YAML token|Block scalar header/i.test(error.message) ? blockHeader(at) : undefined;
+  if (header) reportLeading(header, report);
+  else if (/block-seq-ind/.test(error.message))
+    report("yaml-syntax", here, {
+      says: "a list item (`- `) begins on the line of its key",
+      fix: "give each item a line of its own below the key, or write the list in brackets: `[a, b]`",
+    });
+  else if (/at node end/.test(error.message))
+    report("yaml-syntax", here, {
+      says: "there is more text after the value has ended",
+      fix: "put the whole value in quotes, or remove what follows the closing quote or bracket",
+    });
+  else if (/Missing , /.test(error.message))
+    report("yaml-syntax", here, {
+      says: "a comma is missing between two values in brackets",
+      fix: "part values in brackets by a comma and a space",
+    });
+  else if (!reportGlued(at, report))
+    report("yaml-syntax", here, {
+      says: "this is not YAML as it stands",
+      fix: `look at the characters at the mark; the parser says: ${error.message.replace(/\s+/g, " ")}`,
+    });
+}
 
 /** What a plain value would have been: up to a comment, or the bracket or comma that ends it inside braces. */
 function plainText(rest: string): string {
-  const end = /\s#|[\r\n]|[,\]}]/.exec(rest);
+  const end = /\s#|[,\]}]/.exec(rest);
   return rest.slice(0, end ? end.index : undefined).trimEnd() || rest.slice(0, 1);
 }
-
-const restOfLine = (text: string, from: number): string => /^[^\r\n]*/.exec(text.slice(from))?.[0] ?? "";
-
-const lineStart = (text: string, offset: number): number => text.lastIndexOf("\n", offset - 1) + 1;
-
-const plainSentence = (message: string): string => message.replace(/\s+/g, " ").replace(/[.:]?$/, "");

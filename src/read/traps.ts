@@ -1,50 +1,77 @@
 import type { Report } from "../problems/report.js";
-import { lineText, placeOf } from "../text/source.js";
-import type { Entry, MapNode, Tree } from "./tree.js";
+import { correctedLine } from "./lines.js";
+import type { Entry, ListNode, MapNode, ScalarNode, Tree } from "./tree.js";
 
-/** YAML's own traps: text that is valid YAML and does not say what its author meant. */
-export function reportTraps(tree: Tree, report: Report): void {
-  if (tree.type === "list") for (const item of tree.items) reportTraps(item, report);
-  if (tree.type !== "map") return;
-  const braces = isFlow(tree);
-  for (const [i, entry] of tree.entries.entries()) {
-    if (braces) reportLoneKey(tree, entry, tree.entries[i - 1], report);
-    reportTraps(entry.value, report);
-  }
+/**
+ * YAML's own traps: braces whose text is valid YAML and does not say what its author meant.
+ * @returns the tree as it was meant, so that what else is wrong can be found too
+ */
+export function mendTraps(tree: MapNode, report: Report): MapNode {
+  return mendMap(tree, report);
 }
 
-const isFlow = (map: MapNode): boolean => map.at.source.text[map.at.from] === "{";
+function mend(tree: Tree, report: Report): Tree {
+  if (tree.type === "map") return mendMap(tree, report);
+  if (tree.type === "list") return { ...tree, items: tree.items.map((i) => mend(i, report)) } satisfies ListNode;
+  return tree;
+}
 
-/** A key with no colon after it, inside braces: `{b:1 L}`, or the tail of a value that a comma cut. */
-function reportLoneKey(map: MapNode, entry: Entry, before: Entry | undefined, report: Report): void {
-  const { key, value } = entry;
-  if (!key.plain || value.type !== "scalar" || !value.empty || value.text !== "" || hasColon(map, entry)) return;
+function mendMap(map: MapNode, report: Report): MapNode {
+  const braces = map.at.source.text[map.at.from] === "{";
+  const entries: Entry[] = [];
+  for (const entry of map.entries) {
+    if (braces && isLone(map, entry)) mendLone(entry, entries, report);
+    else entries.push({ key: entry.key, value: mend(entry.value, report) });
+  }
+  return { ...map, entries };
+}
+
+/** A key with no colon after it. */
+function isLone(map: MapNode, { key, value }: Entry): boolean {
+  const noColon = !/^\s*:/.test(map.at.source.text.slice(key.at.to, map.at.to));
+  return key.plain && value.type === "scalar" && value.empty && value.text === "" && noColon;
+}
+
+/** `{b:1 L}`, or the tail of a value that a comma cut: mended onto `entries`. Any other stays as it is. */
+function mendLone(entry: Entry, entries: Entry[], report: Report): void {
+  const { key } = entry;
   const glued = /^([A-Za-z][\w-]*):(\S.*)$/s.exec(key.text);
   if (glued) {
-    const corrected = correctedLine(entry, key.at.from, key.at.to, `${glued[1]}: ${glued[2]}`);
-    report("colon-without-space", key.at, { key: key.text, corrected });
+    report("colon-without-space", key.at, {
+      key: key.text,
+      corrected: correctedLine(key.at, `${glued[1]}: ${glued[2]}`),
+    });
+    const cut = key.at.from + glued[1].length;
+    entries.push({ key: part(key, key.at.from, cut), value: part(key, cut + 1, key.at.to) });
     return;
   }
-  if (!before || before.value.type !== "scalar" || !before.value.plain || before.value.empty) return;
-  const text = map.at.source.text.slice(before.value.at.from, key.at.to);
-  const decimal = /\d$/.test(before.value.text) && /^\d/.test(key.text);
-  const call = count(before.value.text, "(") > count(before.value.text, ")");
-  if (!decimal && !call) return;
-  const better = call ? `"${text}"` : text.replace(/\s*,\s*/, ".");
-  const at = { source: map.at.source, from: before.value.at.from, to: key.at.to };
-  report("comma-in-braces", at, { text, corrected: correctedLine(entry, at.from, at.to, better) });
+  const before = entries.at(-1)?.value;
+  const meant = before?.type === "scalar" && before.plain && !before.empty ? joined(before, key) : undefined;
+  if (!meant) {
+    entries.push(entry);
+    return;
+  }
+  report("comma-in-braces", meant.value.at, {
+    text: part(meant.value, meant.value.at.from, meant.value.at.to).text,
+    corrected: correctedLine(meant.value.at, meant.written),
+  });
+  entries[entries.length - 1] = { key: entries[entries.length - 1].key, value: meant.value };
 }
 
-function hasColon(map: MapNode, { key }: Entry): boolean {
-  return /^\s*:/.test(map.at.source.text.slice(key.at.to, map.at.to));
+/** The value that a comma cut, if it looks like one: a call whose bracket is open, or a decimal comma. */
+function joined(head: ScalarNode, tail: ScalarNode): { value: ScalarNode; written: string } | undefined {
+  const whole = part(head, head.at.from, tail.at.to);
+  if (count(head.text, "(") > count(head.text, ")")) return { value: whole, written: `"${whole.text}"` };
+  if (!/\d$/.test(head.text) || !/^\d/.test(tail.text)) return undefined;
+  const written = `${head.text}.${tail.text}`;
+  return { value: { ...whole, text: written }, written };
 }
 
-/** The line of the entry with a stretch of it replaced. */
-function correctedLine({ key }: Entry, from: number, to: number, by: string): string {
-  const { source } = key.at;
-  const { line, column, endLine, endColumn } = placeOf({ source, from, to });
-  const text = lineText(source, line);
-  return `${text.slice(0, column - 1)}${by}${line === endLine ? text.slice(endColumn - 1) : ""}`.trim();
-}
+/** A plain scalar of a stretch of the same source. */
+const part = (node: ScalarNode, from: number, to: number): ScalarNode => ({
+  ...node,
+  at: { ...node.at, from, to },
+  text: node.at.source.text.slice(from, to),
+});
 
 const count = (text: string, letter: string): number => text.split(letter).length - 1;

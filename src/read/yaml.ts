@@ -1,9 +1,10 @@
 import { type Document, parseDocument } from "yaml";
 import type { Report } from "../problems/report.js";
 import type { Source } from "../text/source.js";
+import { reportGlued } from "./colons.js";
 import { deepest, growTree } from "./grow.js";
 import { reportSyntax } from "./syntax.js";
-import { reportTraps } from "./traps.js";
+import { mendTraps } from "./traps.js";
 import type { MapNode } from "./tree.js";
 
 const megabyte = 1024 * 1024;
@@ -32,11 +33,11 @@ export function readYaml(source: Source, report: Report): MapNode | undefined {
   if (tree === undefined) return undefined;
   if (tree.type !== "map") {
     if (tree.type === "scalar" && tree.empty) report("empty-file", start, {});
-    else report("not-a-map", tree.at, { found: tree.type === "list" ? "a list" : "a single value" });
+    else if (!reportGlued(tree.at, report))
+      report("not-a-map", tree.at, { found: tree.type === "list" ? "a list" : "a single value" });
     return undefined;
   }
-  reportTraps(tree, report);
-  return tree;
+  return mendTraps(tree, report);
 }
 
 /** Failsafe schema: every scalar stays text, and what a number is decides the language, not YAML. */

@@ -37,11 +37,13 @@ export const yamlEntries = {
     says: () => "this line is not indented like the lines that it belongs with",
     fix: "give all keys of one group the same number of spaces before them",
   }),
-  unclosed: entry<{ what: string; closing: string }>({
+  unclosed: entry<{ what: string; closing: string; comment: boolean }>({
     severity: "error",
-    says: (d) => `${d.what} is opened and not closed`,
+    says: (d) => `${d.what} is opened here and not closed`,
     fix: (d) =>
-      `add \`${d.closing}\` at its end; if a \` #\` stands inside, put the text in quotes: \` #\` begins a comment`,
+      d.comment
+        ? "` #` begins a comment that swallows the rest of the line: put the text in quotes"
+        : `add \`${d.closing}\` where it ends`,
   }),
   "two-documents": entry<Record<never, never>>({
     severity: "error",
