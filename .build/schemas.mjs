@@ -3,20 +3,20 @@
 import { existsSync, mkdirSync, readdirSync, readFileSync, renameSync, statSync, writeFileSync } from "node:fs";
 import { dirname, join } from "node:path";
 import { fileURLToPath } from "node:url";
-import { build } from "esbuild";
+import { build, transform } from "esbuild";
 
 const root = dirname(dirname(fileURLToPath(import.meta.url)));
 const validatorsFile = join(root, "src/schema/validators.js");
 
 /** Makes schemas and validators; returns the texts by path, writes nothing. */
 export async function makeSchemas() {
-  const { documentSchemas, documentShapes, editorKeywords, kinds } = await loadDeclarations();
+  const { documentSchemas, documentShapes, bare, kinds } = await loadDeclarations();
   const shapes = documentShapes(kinds);
   const schemas = documentSchemas(shapes);
   const files = new Map();
   for (const [kind, schema] of Object.entries(schemas))
     files.set(join(root, "schemas", `${kind}.schema.json`), `${JSON.stringify(schema, null, 2)}\n`);
-  files.set(validatorsFile, await validatorSource(schemas, shapes, editorKeywords));
+  files.set(validatorsFile, await validatorSource(mapValues(schemas, bare), shapes));
   return files;
 }
 
@@ -40,7 +40,7 @@ async function loadDeclarations() {
   const { outputFiles } = await build({
     stdin: {
       contents: `
-        export { documentSchemas, editorKeywords } from "./src/schema/json-schema.ts";
+        export { documentSchemas, bare } from "./src/schema/json-schema.ts";
         export { documentShapes } from "./src/schema/documents.ts";
         export { kinds } from "./src/compartments/index.ts";`,
       resolveDir: root,
@@ -56,7 +56,7 @@ async function loadDeclarations() {
   return import(`data:text/javascript;base64,${Buffer.from(outputFiles[0].text).toString("base64")}`);
 }
 
-async function validatorSource(schemas, shapes, editorKeywords) {
+async function validatorSource(schemas, shapes) {
   const { default: Ajv2020 } = await import("ajv/dist/2020.js");
   const { default: standaloneCode } = await import("ajv/dist/standalone/index.js");
   const ajv = new Ajv2020({
@@ -66,13 +66,16 @@ async function validatorSource(schemas, shapes, editorKeywords) {
     strictTypes: false,
     code: { source: true, esm: true, lines: false },
   });
-  ajv.addVocabulary(editorKeywords);
   const names = Object.keys(schemas);
   for (const name of names) ajv.addSchema(schemas[name]);
   const code = standaloneCode(ajv, Object.fromEntries(names.map((name) => [name, `${name}.schema.json`])));
   const entries = names.map((name) => `  ${name}: { shape: ${JSON.stringify(shapes[name])}, validate: ${name} },`);
-  return `${code.replace(/^"use strict";/, "// Written by the build; do not edit.\n")}\nexport const documents = {\n${entries.join("\n")}\n};\n`;
+  const text = `${code}\nexport const documents = {\n${entries.join("\n")}\n};\n`;
+  const { code: short } = await transform(text, { minifyWhitespace: true, minifySyntax: true, format: "esm" });
+  return `// Written by the build from the declarations in documents/; do not edit.\n${short}`;
 }
+
+const mapValues = (of, f) => Object.fromEntries(Object.entries(of).map(([key, value]) => [key, f(value)]));
 
 function writeIfNew(path, text) {
   if (existsSync(path) && readFileSync(path, "utf8") === text) {

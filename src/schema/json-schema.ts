@@ -10,6 +10,26 @@ export type Json = string | number | boolean | null | readonly Json[] | { readon
 /** Keywords that editors use and a validator must be told of. */
 export const editorKeywords = ["markdownDescription", "markdownEnumDescriptions", "defaultSnippets", "errorMessage"];
 
+const annotations = new Set([...editorKeywords, "title", "description", "examples", "default"]);
+
+/** The schema without what only editors read: all that a validator needs. */
+export function bare(schema: JsonSchema): JsonSchema {
+  const kept = Object.entries(schema).filter(([keyword]) => !annotations.has(keyword));
+  return Object.fromEntries(
+    kept.map(([keyword, value]) => [
+      keyword,
+      keyword === "properties" ? mapValues(value as JsonSchema, bareValue) : bareValue(value),
+    ]),
+  );
+}
+
+const bareValue = (value: Json): Json =>
+  Array.isArray(value)
+    ? value.map(bareValue)
+    : value !== null && typeof value === "object"
+      ? bare(value as JsonSchema)
+      : value;
+
 /** Names of the author's own: letters, digits, hyphens, underscores, a letter first. */
 export const namePattern = "^[A-Za-z][A-Za-z0-9_-]*$";
 export const dottedPattern = "^[A-Za-z][A-Za-z0-9_-]*(\\.[A-Za-z0-9_-]+)*$";

@@ -44,8 +44,8 @@ function kindRecord(kind: KindKeys): VariantShape {
     kind: { shape: text, says: "What sort of body this is.", required: true },
     ...kind.keys,
   };
-  if (kind.flows) keys["to"] = kind.exchanges ? { ...to, required: false } : to;
-  if (kind.exchanges) keys["exchange"] = exchange;
+  if (kind.flows) keys.to = kind.exchanges ? { ...to, required: false } : to;
+  if (kind.exchanges) keys.exchange = exchange;
   if (kind.flows) for (const key in laterKeys) if (!(key in keys)) keys[key] = later(laterKeys[key]);
   return { says: kind.says, keys };
 }
