@@ -1,0 +1,51 @@
+import type { Box, Svg } from "../svg/svg.js";
+
+/** What a flow diagram shows, apart from any engine: bodies of liquid, streams between them, and how to print both. */
+export interface FlowSheet {
+  readonly title: string;
+  /** One line under the title, such as the vessel's volume, feed and mean time. */
+  readonly says?: string;
+  readonly bodies: readonly SheetBody[];
+  readonly streams: readonly SheetStream[];
+  readonly units: { readonly volume: SheetUnit; readonly flow: SheetUnit };
+}
+
+/** A unit to print in: SI value = number * factor (m3 or m3/s). */
+export interface SheetUnit {
+  readonly name: string;
+  readonly factor: number;
+}
+
+export type BodyRole = "feed" | "outlet" | "body" | "junction" | "dead";
+
+export interface SheetBody {
+  readonly name: string;
+  /** What to print instead of the name. */
+  readonly label?: string;
+  /** m3; 0 for feeds, outlets and junctions. */
+  readonly volume: number;
+  readonly role: BodyRole;
+  /** The kind's picture inside a box whose area stands for the volume; feeds and outlets need none. */
+  readonly picture?: (box: Box) => Svg;
+  /** Width / height of that box, 1 where nothing else is said. */
+  readonly aspect?: number;
+  /** A few words after the volume (an interval, a finding). */
+  readonly note?: string;
+  /** Where tracer enters or is seen. */
+  readonly marks?: readonly ("injection" | "probe")[];
+  /** Should the reader look here? */
+  readonly accent?: boolean;
+}
+
+export type StreamRole = "forward" | "recycle" | "bypass" | "exchange";
+
+export interface SheetStream {
+  readonly from: string;
+  readonly to: string;
+  /** m3/s; of an exchange the flow one way. */
+  readonly flow: number;
+  readonly role: StreamRole;
+  /** As it shall be read: "1 L/min (10 %)". */
+  readonly label: string;
+  readonly accent?: boolean;
+}
