@@ -69,7 +69,7 @@ export const valueEntries = {
   "wrong-dimension": entry<{ text: string; got: string; wanted: string; example: string }>({
     severity: "error",
     says: (d) => `\`${d.text}\` is ${d.got}; ${d.wanted} is wanted`,
-    fix: (d) => (d.example ? `write a value like \`${d.example}\`` : "write a plain number or share, without a unit"),
+    fix: (d) => (d.example ? `write it like \`${d.example}\`` : "write a plain number or share, without a unit"),
   }),
   "unknown-name": entry<{
     name: string;
