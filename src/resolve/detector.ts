@@ -3,18 +3,18 @@ import type { Report } from "../problems/report.js";
 import { child, type ScalarNode, type Tree, textOf } from "../read/tree.js";
 import { isUnitFault, parseUnit } from "../units/parse.js";
 import { signalUnit, type Unit } from "../units/unit.js";
-import { emptyScope, resolveValue } from "./value.js";
+import { emptyScope, resolveUnit, resolveValue } from "./value.js";
 
 /** The unit under a key. Where `anyWord`, a word that is no unit is the detector's own. Undefined: not there, or reported. */
-export function resolveUnit(map: Tree | undefined, key: string, anyWord: boolean, report: Report): Unit | undefined {
-  const node = child(map, key);
+export function resolveDetectorUnit(
+  map: Tree | undefined,
+  key: string,
+  anyWord: boolean,
+  report: Report,
+): Unit | undefined {
   const text = textOf(map, key)?.trim();
-  if (!node || text === undefined) return undefined;
-  const unit = parseUnit(text);
-  if (!isUnitFault(unit)) return unit;
-  if (anyWord) return signalUnit(text);
-  report("table-unit", node.at, { unit: text, nearest: unit.nearest });
-  return undefined;
+  if (anyWord && text !== undefined && isUnitFault(parseUnit(text))) return signalUnit(text);
+  return resolveUnit(child(map, key), "any", report);
 }
 
 /** A value in any unit; where `anyWord`, also in a detector's own: `1500 mV`, `3 squirts ± 2 %`. */

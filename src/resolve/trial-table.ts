@@ -5,10 +5,11 @@ import { decodeText } from "../read/decode.js";
 import { beside } from "../read/paths.js";
 import { type ReadSeries, readSeries } from "../read/series.js";
 import { child, itemsOf, type MapNode, type Tree, textOf } from "../read/tree.js";
-import { dimensions, sameDimension } from "../units/dimension.js";
+import { dimensions } from "../units/dimension.js";
 import { parseUnit } from "../units/parse.js";
 import type { Unit } from "../units/unit.js";
-import { resolveUnit } from "./detector.js";
+import { resolveDetectorUnit } from "./detector.js";
+import { resolveUnit } from "./value.js";
 
 /** What gives the text or the bytes of a file that a document names; undefined where there is none. */
 export interface Files {
@@ -40,8 +41,8 @@ export function resolveTable(
   const time = column(child(node, "time"), fileNode);
   const value = column(child(node, "value"), fileNode);
   const format = resolveFormat(child(node, "time"), report);
-  const timeUnit = resolveUnit(child(node, "time"), "unit", false, report);
-  const valueUnit = resolveUnit(child(node, "value"), "unit", anyWord, report);
+  const timeUnit = resolveUnit(child(child(node, "time"), "unit"), dimensions.time, report);
+  const valueUnit = resolveDetectorUnit(child(node, "value"), "unit", anyWord, report);
   const units = checkUnits(node, timeUnit, valueUnit, report);
   if (content === undefined) report("file-missing", fileNode.at, { file });
   if (content === undefined || !time || !value || !valueUnit || format === "faulty" || !units) return undefined;
@@ -76,17 +77,15 @@ function resolveFormat(time: Tree | undefined, report: Report): ReturnType<typeo
   return format ?? "faulty";
 }
 
-/** Units that are there when they must be, and of a time for times. */
+/** Are units there when they must be, and not beside a format? */
 function checkUnits(node: MapNode, time: Unit | undefined, value: Unit | undefined, report: Report): boolean {
   const before = { time: child(node, "time"), value: child(node, "value") };
   const name = (part: "time" | "value"): string => textOf(before[part], "column") ?? part;
   if (before.value && !value && !child(before.value, "unit"))
     report("unit-missing", before.value.at, { column: name("value") });
   if (!time) return child(before.time, "unit") === undefined;
-  const at = child(before.time, "unit")?.at ?? node.at;
-  if (child(before.time, "format")) report("unit-and-format", at, { column: name("time") });
-  else if (sameDimension(time.dimension, dimensions.time)) return true;
-  else report("table-unit", at, { unit: time.name, nearest: "min" });
+  if (!child(before.time, "format")) return true;
+  report("unit-and-format", child(before.time, "unit")?.at ?? node.at, { column: name("time") });
   return false;
 }
 

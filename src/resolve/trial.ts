@@ -9,7 +9,7 @@ import { resolveReading } from "./reading.js";
 import { aboveZero } from "./sign.js";
 import { type TrialClock, trialClock } from "./trial-clock.js";
 import { type Files, knownUnit, type ResolvedTable, resolveTable } from "./trial-table.js";
-import { emptyScope, resolveValue } from "./value.js";
+import { emptyScope, resolveValue, type Scope } from "./value.js";
 
 export type { Files } from "./trial-table.js";
 
@@ -17,9 +17,16 @@ export type { Files } from "./trial-table.js";
  * A trial document with its tables read, all on one clock, in SI.
  * @param tree  a document that has passed the shape check
  * @param path  of the document; the files it names are relative to it
+ * @param scope names that `flows` and `with` may use: the network's, where one is known
  * @returns undefined where something is wrong that leaves no trial; reported, as is everything else
  */
-export function resolveTrial(tree: MapNode, path: string, files: Files, report: Report): Trial | undefined {
+export function resolveTrial(
+  tree: MapNode,
+  path: string,
+  files: Files,
+  report: Report,
+  scope: Scope = emptyScope,
+): Trial | undefined {
   const readingNodes = mapsOf(child(tree, "readings"));
   const injectionNodes = mapsOf(child(tree, "injection"));
   const free = readingNodes.length > 0 && readingNodes.every((node) => textOf(node, "scale") === "free");
@@ -44,8 +51,8 @@ export function resolveTrial(tree: MapNode, path: string, files: Files, report: 
     return missing ? undefined : reading;
   });
   const title = child(tree, "trial");
-  const flows = values(child(tree, "flows"), dimensions.flow, report);
-  for (const flow of flows.values()) aboveZero("the flow of a feed", flow, true, report);
+  const flows = values(child(tree, "flows"), dimensions.flow, scope, report);
+  for (const flow of flows.values()) if (flow.uses.length === 0) aboveZero("the flow of a feed", flow, true, report);
   const whole = [...injections, ...readings].every((part) => part !== undefined);
   if (!whole) return undefined;
   return {
@@ -54,7 +61,7 @@ export function resolveTrial(tree: MapNode, path: string, files: Files, report: 
     path,
     vessel: textOf(tree, "vessel"),
     flows,
-    with: values(child(tree, "with"), "any", report),
+    with: values(child(tree, "with"), "any", scope, report),
     injections: injections.filter((part) => part !== undefined),
     readings: readings.filter((part) => part !== undefined),
     ...(clock.format ? { clock: clock.format } : {}),
@@ -64,10 +71,10 @@ export function resolveTrial(tree: MapNode, path: string, files: Files, report: 
 const mapsOf = (node: Tree | undefined): MapNode[] =>
   itemsOf(node).flatMap((item) => (item.type === "map" ? [item] : []));
 
-function values(node: Tree | undefined, wanted: Dimension | "any", report: Report): Map<string, Value> {
+function values(node: Tree | undefined, wanted: Dimension | "any", scope: Scope, report: Report): Map<string, Value> {
   const found = new Map<string, Value>();
   for (const { key, value } of entriesOf(node)) {
-    const resolved = resolveValue(value, wanted, emptyScope, report);
+    const resolved = resolveValue(value, wanted, scope, report);
     if (resolved) found.set(key.text, resolved);
   }
   return found;

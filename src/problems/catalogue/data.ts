@@ -59,15 +59,6 @@ export const dataEntries = {
     says: ({ column }) => `column '${column}' has both a unit and a format`,
     fix: "keep `unit` for elapsed times, or `format` for clock times and dates",
   }),
-  "table-unit": entry<{ unit: string; nearest: string | undefined }>({
-    severity: "error",
-    says: ({ unit }) => `'${unit}' is no unit that backmix knows`,
-    fix: ({ nearest }) =>
-      meant(
-        nearest,
-        "write a known unit; a detector's own word may stand where `scale: free` or a calibration is given",
-      ),
-  }),
   "bad-format": entry<{ format: string }>({
     severity: "error",
     says: ({ format }) => `'${format}' is no way to write a time`,

@@ -1,0 +1,77 @@
+import { extent } from "./extent.js";
+
+/** What lies under the signal: level + slope * (t - middle), with standard errors (independent at `middle`). SI. */
+export interface Baseline {
+  readonly level: number;
+  readonly slope: number;
+  readonly middle: number;
+  readonly levelError: number;
+  readonly slopeError: number;
+  readonly from: "before the injection" | "after the tail" | "before and after";
+  /** True where a drift was asked for and only a constant could be told. */
+  readonly driftUnknown: boolean;
+}
+
+/**
+ * The baseline from the points before the injection and those after the tail has settled; undefined where there are
+ * neither. A constant takes the points before if there are 3, a drift a straight line through both.
+ * @param before how many points lie before the injection
+ * @param sd     scatter of one point
+ */
+export function baselineOf(
+  t: Float64Array,
+  y: Float64Array,
+  before: number,
+  sd: number,
+  mode: "constant" | "drift",
+): Baseline | undefined {
+  const early = range(0, before);
+  const late = settled(y, before, sd);
+  if (mode === "drift" && early.length >= 2 && late.length >= 3) return line(t, y, [...early, ...late], sd);
+  const use = early.length >= 3 || (early.length > 0 && late.length === 0) ? early : late;
+  if (use.length === 0) return undefined;
+  const level = use.reduce((sum, i) => sum + y[i], 0) / use.length;
+  return {
+    level,
+    slope: 0,
+    middle: 0,
+    levelError: sd / Math.sqrt(use.length),
+    slopeError: 0,
+    from: use === early ? "before the injection" : "after the tail",
+    driftUnknown: mode === "drift",
+  };
+}
+
+/** The value of a baseline at time t. */
+export const baselineAt = (b: Baseline, t: number): number => b.level + b.slope * (t - b.middle);
+
+/** The last points, where they no longer fall: the last twentieth (3 at least) is level with the one before it. */
+function settled(y: Float64Array, before: number, sd: number): number[] {
+  const n = y.length;
+  const size = Math.max(3, Math.floor(n / 20));
+  if (n - before < 4 * size) return [];
+  const mean = (from: number): number => range(from, from + size).reduce((sum, i) => sum + y[i], 0) / size;
+  const fall = Math.abs(mean(n - size) - mean(n - 2 * size));
+  const [low, high] = extent(y.subarray(before));
+  return fall <= Math.max(2 * sd * Math.sqrt(2 / size), 1e-3 * (high - low)) ? range(n - size, n) : [];
+}
+
+function line(t: Float64Array, y: Float64Array, use: readonly number[], sd: number): Baseline {
+  const n = use.length;
+  const middle = use.reduce((sum, i) => sum + t[i], 0) / n;
+  const level = use.reduce((sum, i) => sum + y[i], 0) / n;
+  const wide = use.reduce((sum, i) => sum + (t[i] - middle) ** 2, 0);
+  const slope = use.reduce((sum, i) => sum + (t[i] - middle) * (y[i] - level), 0) / wide;
+  return {
+    level,
+    slope,
+    middle,
+    levelError: sd / Math.sqrt(n),
+    slopeError: sd / Math.sqrt(wide),
+    from: "before and after",
+    driftUnknown: false,
+  };
+}
+
+const range = (from: number, to: number): number[] =>
+  Array.from({ length: Math.max(0, to - from) }, (_, i) => from + i);

@@ -1,0 +1,136 @@
+/** What a curve says, or cannot say. Every sentence stands on numbers: they are in `evidence`. */
+export interface Finding {
+  readonly code: FindingCode;
+  /** The place of the reading. */
+  readonly at: string;
+  /** How bad: `note` tells, `caution` limits the use of the figures, `stop` leaves no figure. */
+  readonly weight: "note" | "caution" | "stop";
+  readonly message: string;
+  readonly evidence: string;
+  /** What else could make the same sign. */
+  readonly couldBe: string;
+  /** What to do or check next. */
+  readonly next: string;
+}
+
+export type FindingCode = keyof typeof wording;
+
+/** Builds a finding; the catalogue words all of it but the numbers. */
+export function finding(code: FindingCode, at: string, evidence: string): Finding {
+  return { code, at, evidence, ...wording[code] };
+}
+
+/** Findings of the data alone, in one place. */
+const wording = {
+  "no-signal": {
+    weight: "stop",
+    message: "the reading never changes: there is no curve to read",
+    couldBe: "the wrong column, a detector that was off, or a dose that never came by",
+    next: "check the column and the detector; repeat the test if the log is right",
+  },
+  "only-noise": {
+    weight: "stop",
+    message: "the reading is not told from noise: there is no curve to read",
+    couldBe: "too small a dose, the wrong column, or a detector at its limit",
+    next: "plan a larger dose; a peak should be 50 times the noise or more",
+  },
+  "few-points": {
+    weight: "stop",
+    message: "too few points lie on the curve for moments",
+    couldBe: "sampling too sparse for a short vessel",
+    next: "sample at least 10 times over the rise and the peak",
+  },
+  "no-area": {
+    weight: "stop",
+    message: "the area under the curve is not above zero",
+    couldBe: "a baseline or blank that is too high, or a calibration with the wrong sign",
+    next: "check the blank, the calibration and the baseline",
+  },
+  "several-injections": {
+    weight: "stop",
+    message: "several injections overlap in one curve: without a model it cannot be taken apart",
+    couldBe: "one test logged as several",
+    next: "fit a network, or read each injection as a trial of its own",
+  },
+  "step-level": {
+    weight: "stop",
+    message: "the level of the step is not known and the reading does not settle",
+    couldBe: "a test stopped too early",
+    next: "give the level in the reading's unit, or measure until it settles",
+  },
+  "recovery-low": {
+    weight: "caution",
+    message: "less tracer came out than went in",
+    couldBe:
+      "sorption or reaction, an outlet not measured, a tail not waited for, or a wrong dose, flow or calibration",
+    next: "check dose, flow and calibration; look for a second way out; measure longer",
+  },
+  "recovery-high": {
+    weight: "caution",
+    message: "more tracer came out than went in",
+    couldBe: "a wrong dose, flow or calibration, a baseline that was not taken off, or tracer that came round again",
+    next: "check the blank and the dose; measure the inlet where the plant recycles",
+  },
+  "tail-share": {
+    weight: "caution",
+    message: "a large part of the figures comes from the extrapolated tail",
+    couldBe: "a test stopped too early, or slow exchange with a stagnant zone",
+    next: "measure longer; t10 and t50 suffer least",
+  },
+  "tail-open": {
+    weight: "caution",
+    message: "the curve has not come down, and its end shows no steady decay: area, mean and variance are cut short",
+    couldBe: "a test stopped too early, a baseline that is too low, or tracer that came round again",
+    next: "measure longer, or declare the baseline; do not read dead volume from this mean",
+  },
+  "tail-power": {
+    weight: "caution",
+    message: "the tail falls like a power of time: mean and variance have no limit that these data show",
+    couldBe: "exchange over a wide range of times, as in wetlands and packed beds",
+    next: "use t10 and t50, or fit a network and report its range of validity",
+  },
+  "baseline-unknown": {
+    weight: "caution",
+    message: "the baseline asked for cannot be told: no point lies before the injection and the end has not settled",
+    couldBe: "a log that starts with the injection",
+    next: "start the log ten points before the injection",
+  },
+  "drift-unknown": {
+    weight: "note",
+    message: "a drift needs points before the injection and after the tail: a constant was taken off",
+    couldBe: "a log that starts late or ends early",
+    next: "log before the injection and until the reading has settled",
+  },
+  "baseline-left": {
+    weight: "caution",
+    message: "the reading was not at zero before the injection, and no baseline is declared",
+    couldBe: "background of the tracer, or a blank that is off",
+    next: "declare `baseline: constant`",
+  },
+  "early-part": {
+    weight: "caution",
+    message: "the first reading is already high: what came before it was not seen",
+    couldBe: "a bypass, or sampling that began late",
+    next: "sample from the injection on",
+  },
+  "mean-early": {
+    weight: "note",
+    message: "the mean is shorter than volume over flow: part of the volume is not reached",
+    couldBe: "a volume or flow that is off, or a tail that was not seen",
+    next: "check volume and flow meter; measure longer",
+  },
+  "mean-late": {
+    weight: "caution",
+    message: "the mean is longer than volume over flow, which a closed vessel in steady flow does not allow",
+    couldBe:
+      "a wrong volume or flow, retention of the tracer, tracer that came round again, or an early peak that was missed",
+    next: "check volume and flow meter; take early samples faster; try a second tracer",
+  },
+  "dead-or-tail": {
+    weight: "note",
+    message:
+      "the mean is shorter than volume over flow, but too much of the curve was not seen: dead volume and a long tail cannot be told apart",
+    couldBe: "either",
+    next: "measure longer",
+  },
+} as const satisfies Record<string, Omit<Finding, "code" | "at" | "evidence">>;

@@ -1,0 +1,59 @@
+import type { Reading } from "../model/trial.js";
+
+/** One standard deviation of each point, and where it is known from. */
+export interface Noise {
+  readonly sd: Float64Array;
+  readonly from: "declared" | "before the injection" | "roughness of the curve";
+}
+
+/**
+ * The scatter of a reading: as declared; else that of at least 8 points before the injection; else the roughness of the
+ * curve, which is an upper bound where samples are sparse.
+ * @param n how many of the points lie before the injection
+ */
+export function noiseOf(t: Float64Array, y: Float64Array, n: number, declared: Reading["noise"]): Noise {
+  if (declared) {
+    const floor = declared.floor?.of([]) ?? 0;
+    const relative = declared.relative ?? 0;
+    return { sd: y.map((c) => Math.hypot(floor, relative * c)), from: "declared" };
+  }
+  const before = n >= 8 ? roughness(t.subarray(0, n), y.subarray(0, n)) : 0;
+  const sd = n >= 8 ? before : roughness(t, y);
+  return { sd: new Float64Array(y.length).fill(sd), from: n >= 8 ? "before the injection" : "roughness of the curve" };
+}
+
+/**
+ * Standard deviation of independent noise on a smooth curve, from how far each point lies off the line between its
+ * neighbours (T. Gasser, L. Sroka, C. Jennen-Steinmetz, Biometrika 73 (1986) 625-633). 0 for fewer than 3 points.
+ */
+export function roughness(t: Float64Array, y: Float64Array): number {
+  let sum = 0;
+  let count = 0;
+  for (let i = 1; i + 1 < t.length; i++) {
+    const width = t[i + 1] - t[i - 1];
+    if (!(width > 0)) continue;
+    const a = (t[i + 1] - t[i]) / width;
+    const off = a * y[i - 1] + (1 - a) * y[i + 1] - y[i];
+    sum += (off * off) / (a * a + (1 - a) * (1 - a) + 1);
+    count++;
+  }
+  return count === 0 ? 0 : Math.sqrt(sum / count);
+}
+
+/** True where nothing but noise is there: no more spread than noise has, and no point that stands out. */
+export function isNoise(t: Float64Array, y: Float64Array): boolean {
+  const mean = y.reduce((sum, c) => sum + c, 0) / y.length;
+  const spread = y.reduce((sum, c) => sum + (c - mean) ** 2, 0) / Math.max(1, y.length - 1);
+  // The ratio of successive differences to variance (von Neumann 1941), here of second differences.
+  if (spread > 1.6 * roughness(t, y) ** 2) return false;
+  const middle = median(y);
+  const robust = 1.4826 * median(y.map((c) => Math.abs(c - middle)));
+  return y.every((c) => Math.abs(c - middle) <= 6 * robust);
+}
+
+/** The middle value; the mean of the two middle ones where the count is even. */
+export function median(values: Float64Array): number {
+  const sorted = values.slice().sort();
+  const half = sorted.length >> 1;
+  return sorted.length % 2 === 1 ? sorted[half] : (sorted[half - 1] + sorted[half]) / 2;
+}

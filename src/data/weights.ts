@@ -1,0 +1,50 @@
+/** How a sampled curve is integrated. */
+export type Rule = "trapezoid" | "simpson";
+
+/** Weights w with integral = sum w_i y_i over the points t (rising, any spacing; equal times are allowed). Same unit as t. */
+export function weights(t: Float64Array, rule: Rule): Float64Array {
+  const w = new Float64Array(t.length);
+  if (rule === "simpson" && t.length >= 3) simpson(t, w);
+  else trapezoid(t, w, 0, t.length - 1);
+  return w;
+}
+
+function trapezoid(t: Float64Array, w: Float64Array, from: number, to: number): void {
+  for (let i = from; i < to; i++) {
+    const half = (t[i + 1] - t[i]) / 2;
+    w[i] += half;
+    w[i + 1] += half;
+  }
+}
+
+/**
+ * Composite Simpson's rule for any spacing: a parabola through each three points; with an even number of points the
+ * last interval takes the parabola through the last three (K. V. Cartwright, Journal of Mathematical Sciences and
+ * Mathematics Education 11 (2017) 34-42, from memory). Equal times fall back to the trapezoid.
+ */
+function simpson(t: Float64Array, w: Float64Array): void {
+  const last = t.length - 1;
+  const paired = last % 2 === 0 ? last : last - 1;
+  for (let i = 0; i + 2 <= paired; i += 2) {
+    const a = t[i + 1] - t[i];
+    const b = t[i + 2] - t[i + 1];
+    if (a === 0 || b === 0) {
+      trapezoid(t, w, i, i + 2);
+      continue;
+    }
+    const sixth = (a + b) / 6;
+    w[i] += sixth * (2 - b / a);
+    w[i + 1] += (sixth * (a + b) ** 2) / (a * b);
+    w[i + 2] += sixth * (2 - a / b);
+  }
+  if (paired === last) return;
+  const a = t[last - 1] - t[last - 2];
+  const b = t[last] - t[last - 1];
+  if (a === 0 || b === 0) {
+    trapezoid(t, w, last - 1, last);
+    return;
+  }
+  w[last] += (2 * b * b + 3 * a * b) / (6 * (a + b));
+  w[last - 1] += (b * b + 3 * a * b) / (6 * a);
+  w[last - 2] -= b ** 3 / (6 * a * (a + b));
+}
