@@ -13,7 +13,6 @@ import type { Fit, FittedReading, FoundOptimum } from "./result.js";
 import { type SearchResult, searchFrom, type Watch } from "./search.js";
 import { type Settled, settle } from "./settle.js";
 import { type Setup, valuesAt } from "./setup.js";
-import { startPoints } from "./starts.js";
 import { fittedCurve, weightsFor } from "./weights.js";
 
 export interface FitOptions {
@@ -64,8 +63,7 @@ export function fitWith(
   }
   const file = Float64Array.from(setup.coordinates, (c) => c.fromSi(c.start));
   const plan = { others: options.starts, seed: options.seed ?? 1 };
-  const starts = startPoints(setup, file, plan, (x) => problem.evaluate(x) !== undefined);
-  const found = searchFrom(problem, starts, watch);
+  const found = searchFrom(problem, file, plan, watch);
   const settled = found.best && settle(setup, weights, problem, found.best, watch);
   if (!settled) {
     report("no-start", network.at, { tried: setup.cost.evaluations });

@@ -1,6 +1,6 @@
 import { leastSquares } from "../numerics/least-squares.js";
 import type { Problem } from "./problem.js";
-import { delayWalks, withCoordinate } from "./starts.js";
+import { delayWalks, drawnStarts, type StartPlan, startCounts, walkStarts, withCoordinate } from "./starts.js";
 
 /** What watches a search, and may end it. */
 export interface Watch {
@@ -25,30 +25,59 @@ export interface SearchResult {
   readonly cancelled: boolean;
 }
 
-/** Descents polished to the end after the rough ones. */
-const polished = 4;
+/** Ends of rough descents that are worth a closer one. */
+const closer = 4;
 
 /**
- * The best of many descents: a rough one from every start, a full one from the best ends that differ, then hops of one sampling
- * gap to both sides along the delays of tubes for as long as that finds better.
+ * The best of many descents: a rough one from the file's values, then from every sampling gap of the tubes about its end (what
+ * else the data fix is in place by then) and from points drawn inside the bounds; a closer one from the best ends that differ; hops of one sampling gap to both sides along the delays for as long as that finds better; a full one
+ * from the best.
  */
-export function searchFrom(problem: Problem, starts: readonly Float64Array[], watch: Watch): SearchResult {
+export function searchFrom(problem: Problem, file: Float64Array, plan: StartPlan, watch: Watch): SearchResult {
+  const { setup } = problem;
+  const allowed = (x: Float64Array): boolean => problem.evaluate(x) !== undefined;
   const rough: Optimum[] = [];
-  for (const [k, start] of starts.entries()) {
-    if (watch.cancelled() && rough.length > 0) break;
-    rough.push(descend(problem, start, roughly, watch));
-    const best = Math.min(...rough.map((r) => r.sum));
-    watch.progress({ start: k + 1, starts: starts.length, best, evaluations: problem.setup.cost.evaluations });
-  }
-  const clusters = distinct(rough, 1e-2).slice(0, polished);
-  const fine = distinct(
-    clusters.map((c) => ({ ...descend(problem, c.x, fully, watch), reached: c.reached })),
-    1e-4,
+  let planned = 1 + (plan.others ?? 0);
+  const descendFrom = (starts: readonly Float64Array[]): void => {
+    for (const start of starts) {
+      if (watch.cancelled() && rough.length > 0) return;
+      rough.push(descend(problem, start, roughly, watch));
+      const best = Math.min(...rough.map((r) => r.sum));
+      watch.progress({ start: rough.length, starts: planned, best, evaluations: setup.cost.evaluations });
+    }
+  };
+  if (allowed(file)) descendFrom([file]);
+  // What ran into a bound went astray with the front in the wrong place: it starts again from the file's value.
+  const about = file.map((u, j) => {
+    const { from, to } = setup.coordinates[j];
+    const end = rough[0]?.x[j] ?? u;
+    return end <= from || end >= to ? u : end;
+  });
+  const walks = delayWalks(setup, about);
+  const steps = walks.reduce((sum, w) => sum + w.at.length, 0);
+  const counts = startCounts(setup, steps, plan);
+  const walked = betterHalf(problem, walkStarts(walks, about, counts.walked));
+  const drawn = betterHalf(problem, drawnStarts(setup, counts.drawn, plan.seed, allowed));
+  planned = rough.length + walked.length + drawn.length;
+  descendFrom(walked);
+  descendFrom(drawn);
+  const ends = distinct(
+    distinct(rough, 1e-2)
+      .slice(0, closer)
+      .map((c) => ({ ...descend(problem, c.x, closely, watch), reached: c.reached })),
+    1e-3,
   );
-  if (fine.length === 0) return { best: undefined, optima: [], cancelled: watch.cancelled() };
-  const best = hop(problem, fine[0], watch);
-  const optima = distinct([best, ...fine], 1e-4);
-  return { best, optima, cancelled: watch.cancelled() };
+  if (ends.length === 0) return { best: undefined, optima: [], cancelled: watch.cancelled() };
+  const hopped = counts.walked > 0 ? hop(problem, ends[0], watch) : ends[0];
+  const best = { ...descend(problem, hopped.x, fully, watch), reached: hopped.reached };
+  return { best, optima: distinct([best, ...ends], 1e-3), cancelled: watch.cancelled() };
+}
+
+/** Starts with the smaller sums of squares, best first; those that make no vessel are left out. */
+function betterHalf(problem: Problem, starts: readonly Float64Array[]): Float64Array[] {
+  const rated = starts.map((x) => ({ x, sum: problem.evaluate(x)?.ofAll ?? Infinity }));
+  const possible = rated.filter((r) => Number.isFinite(r.sum)).sort((a, b) => a.sum - b.sum);
+  return possible.slice(0, Math.ceil(starts.length / 2)).map((r) => r.x);
 }
 
 interface Effort {
@@ -57,6 +86,7 @@ interface Effort {
   readonly polish: boolean;
 }
 const roughly: Effort = { tolerance: 1e-3, evaluationsPerUnknown: 10, polish: false };
+const closely: Effort = { tolerance: 1e-7, evaluationsPerUnknown: 30, polish: false };
 export const fully: Effort = { tolerance: 1e-12, evaluationsPerUnknown: 200, polish: true };
 
 /** One descent from a point; an end of infinite sum where there is no vessel. */
@@ -114,7 +144,7 @@ function hop(problem: Problem, from: Optimum, watch: Watch): Optimum {
       }
     }
     if (best === before) return best;
-    best = { ...descend(problem, best.x, fully, watch), reached: best.reached };
+    best = { ...descend(problem, best.x, closely, watch), reached: best.reached };
   }
   return best;
 }

@@ -51,34 +51,46 @@ export function delayWalks(setup: Setup, from: Float64Array): DelayWalk[] {
   });
 }
 
+/** How many starts of each sort a plan means. */
+export interface StartCounts {
+  readonly walked: number;
+  readonly drawn: number;
+}
+
 /**
- * All starts inside the bounds that make a vessel: the file's values, the steps of the delay walks about them, then a
- * low-discrepancy sequence.
- * @param allowed  whether a point makes a vessel
+ * Steps of the delay walks and points of the low-discrepancy sequence. A plan with too few for every sampling gap gives half of
+ * them to the walks.
  */
-export function startPoints(
+export function startCounts(setup: Setup, steps: number, plan: StartPlan): StartCounts {
+  const n = setup.coordinates.length;
+  if (plan.others === undefined) return { walked: steps, drawn: 4 + (steps > 0 ? 2 : 4) * n };
+  const walked = Math.min(steps, Math.ceil(plan.others / 2));
+  return { walked, drawn: plan.others - walked };
+}
+
+/** `count` steps, evenly picked, of the delay walks about a point. */
+export function walkStarts(walks: readonly DelayWalk[], about: Float64Array, count: number): Float64Array[] {
+  const all = walks.flatMap((w) => [...w.at].map((u) => withCoordinate(about, w.index, u)));
+  return Array.from({ length: count }, (_, k) => all[Math.floor(((k + 0.5) * all.length) / count)]);
+}
+
+/**
+ * Starts inside the bounds from a low-discrepancy sequence.
+ * @param allowed  whether a point makes a vessel; points that do not are passed over
+ * @returns fewer than `count` where hardly any point makes a vessel
+ */
+export function drawnStarts(
   setup: Setup,
-  file: Float64Array,
-  plan: StartPlan,
+  count: number,
+  seed: number,
   allowed: (x: Float64Array) => boolean,
 ): Float64Array[] {
-  const n = setup.coordinates.length;
-  const starts: Float64Array[] = allowed(file) ? [file] : [];
-  const walked = delayWalks(setup, file).flatMap((w) => [...w.at].map((u) => withCoordinate(file, w.index, u)));
-  const others = plan.others ?? walked.length + 8 + 4 * n;
-  const steps = others >= walked.length + 4 ? walked.length : Math.floor(others / 2);
-  for (let k = 0; k < steps; k++) {
-    const x = walked[Math.floor(((k + 0.5) * walked.length) / steps)];
-    if (allowed(x)) starts.push(x);
-  }
-  const sequence = lowDiscrepancy(n, plan.seed);
-  let wanted = others - steps;
-  for (let tries = 0; wanted > 0 && tries < 50 * others; tries++) {
-    const point = sequence();
+  const next = lowDiscrepancy(setup.coordinates.length, seed);
+  const starts: Float64Array[] = [];
+  for (let tries = 0; starts.length < count && tries < 50 * count; tries++) {
+    const point = next();
     const x = Float64Array.from(setup.coordinates, (c, j) => c.draw[0] + point[j] * (c.draw[1] - c.draw[0]));
-    if (!allowed(x)) continue;
-    starts.push(x);
-    wanted--;
+    if (allowed(x)) starts.push(x);
   }
   return starts;
 }

@@ -14,7 +14,8 @@ export function networkOf(text: string, path = "network.yaml"): Network {
   const { report, problems } = collector();
   const tree = readYaml({ path, text }, report);
   const network = tree && resolveNetwork(tree, path, report);
-  if (!network || problems.some((p) => p.severity === "error")) throw new Error(problems.map((p) => p.message).join("; "));
+  if (!network || problems.some((p) => p.severity === "error"))
+    throw new Error(problems.map((p) => p.message).join("; "));
   return network;
 }
 
@@ -23,7 +24,8 @@ export function trialOf(text: string, read: (path: string) => string | undefined
   const { report, problems } = collector();
   const tree = readYaml({ path, text }, report);
   const trial = tree && resolveTrial(tree, path, { read }, report);
-  if (!trial || problems.some((p) => p.severity === "error")) throw new Error(problems.map((p) => p.message).join("; "));
+  if (!trial || problems.some((p) => p.severity === "error"))
+    throw new Error(problems.map((p) => p.message).join("; "));
   return trial;
 }
 

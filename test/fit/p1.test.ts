@@ -38,7 +38,10 @@ describe("bypass, tube and quiet corner from the case's own start values", () =>
 
   test("baseline and drift come with it", () => {
     const terms = found.nuisance["Pulse of two minutes/out"];
-    for (const [got, [value, error, unit]] of [[terms.offset, offset], [terms.drift, drift]] as const) {
+    for (const [got, [value, error, unit]] of [
+      [terms.offset, offset],
+      [terms.drift, drift],
+    ] as const) {
       expect(Math.abs((got?.value ?? NaN) / unit - value) / error).toBeLessThan(1e-3);
       expect(Math.abs((got?.standardError ?? NaN) / unit / error - 1)).toBeLessThan(1e-3);
     }
