@@ -10,13 +10,13 @@ const validatorsFile = join(root, "src/schema/validators.js");
 
 /** Makes schemas and validators; returns the texts by path, writes nothing. */
 export async function makeSchemas() {
-  const { documentSchemas, documentShapes, bare, kinds } = await loadDeclarations();
+  const { documentSchemas, documentShapes, validatorSchema, kinds } = await loadDeclarations();
   const shapes = documentShapes(kinds);
   const schemas = documentSchemas(shapes);
   const files = new Map();
   for (const [kind, schema] of Object.entries(schemas))
     files.set(join(root, "schemas", `${kind}.schema.json`), `${JSON.stringify(schema, null, 2)}\n`);
-  files.set(validatorsFile, await validatorSource(mapValues(schemas, bare), shapes));
+  files.set(validatorsFile, await validatorSource(mapValues(schemas, validatorSchema), shapes));
   return files;
 }
 
@@ -40,7 +40,8 @@ async function loadDeclarations() {
   const { outputFiles } = await build({
     stdin: {
       contents: `
-        export { documentSchemas, bare } from "./src/schema/json-schema.ts";
+        export { documentSchemas } from "./src/schema/json-schema.ts";
+        export { validatorSchema } from "./src/schema/bare.ts";
         export { documentShapes } from "./src/schema/documents.ts";
         export { kinds } from "./src/compartments/index.ts";`,
       resolveDir: root,
@@ -64,6 +65,7 @@ async function validatorSource(schemas, shapes) {
     allowUnionTypes: true,
     strictRequired: false,
     strictTypes: false,
+    inlineRefs: false,
     code: { source: true, esm: true, lines: false },
   });
   const names = Object.keys(schemas);

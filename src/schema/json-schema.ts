@@ -10,26 +10,6 @@ export type Json = string | number | boolean | null | readonly Json[] | { readon
 /** Keywords that editors use and a validator must be told of. */
 export const editorKeywords = ["markdownDescription", "markdownEnumDescriptions", "defaultSnippets", "errorMessage"];
 
-const annotations = new Set([...editorKeywords, "title", "description", "examples", "default"]);
-
-/** The schema without what only editors read: all that a validator needs. */
-export function bare(schema: JsonSchema): JsonSchema {
-  const kept = Object.entries(schema).filter(([keyword]) => !annotations.has(keyword));
-  return Object.fromEntries(
-    kept.map(([keyword, value]) => [
-      keyword,
-      keyword === "properties" ? mapValues(value as JsonSchema, bareValue) : bareValue(value),
-    ]),
-  );
-}
-
-const bareValue = (value: Json): Json =>
-  Array.isArray(value)
-    ? value.map(bareValue)
-    : value !== null && typeof value === "object"
-      ? bare(value as JsonSchema)
-      : value;
-
 /** Names of the author's own: letters, digits, hyphens, underscores, a letter first. */
 export const namePattern = "^[A-Za-z][A-Za-z0-9_-]*$";
 export const dottedPattern = "^[A-Za-z][A-Za-z0-9_-]*(\\.[A-Za-z0-9_-]+)*$";
@@ -182,5 +162,5 @@ function eitherSchema(alternatives: readonly Shape[]): JsonSchema {
   return { type: [...types], ...(conditions.length > 0 ? { allOf: conditions } : {}) };
 }
 
-const mapValues = <A, B>(of: Readonly<Record<string, A>>, f: (a: A) => B): Record<string, B> =>
+export const mapValues = <A, B>(of: Readonly<Record<string, A>>, f: (a: A) => B): Record<string, B> =>
   Object.fromEntries(Object.entries(of).map(([key, a]) => [key, f(a)]));

@@ -1,0 +1,47 @@
+import { editorKeywords, type Json, type JsonSchema, mapValues } from "./json-schema.js";
+
+const annotations = new Set([...editorKeywords, "title", "description", "examples", "default"]);
+
+/** What a validator is compiled from: the schema without what only editors read, each part that recurs written once. */
+export function validatorSchema(schema: JsonSchema): JsonSchema {
+  const plain = bare(schema);
+  const counts = new Map<string, number>();
+  visit(plain, (part) => counts.set(key(part), (counts.get(key(part)) ?? 0) + 1));
+  const names = new Map<string, string>();
+  for (const [text, n] of counts) if (n > 1 && text.length > 200) names.set(text, `part${names.size}`);
+  const $defs: Record<string, Json> = {};
+  const refer = (part: JsonSchema): JsonSchema => {
+    const name = names.get(key(part));
+    if (name === undefined) return mapParts(part, refer);
+    $defs[name] ??= mapParts(part, refer);
+    return { $ref: `#/$defs/${name}` };
+  };
+  return { ...mapParts(plain, refer), $defs };
+}
+
+const key = (part: JsonSchema): string => JSON.stringify(part);
+
+const bare = (schema: JsonSchema): JsonSchema =>
+  mapParts(Object.fromEntries(Object.entries(schema).filter(([keyword]) => !annotations.has(keyword))), bare);
+
+function visit(schema: JsonSchema, each: (part: JsonSchema) => void): void {
+  mapParts(schema, (part) => {
+    each(part);
+    visit(part, each);
+    return part;
+  });
+}
+
+/** The schema with each schema directly in it mapped. */
+function mapParts(schema: JsonSchema, map: (part: JsonSchema) => JsonSchema): JsonSchema {
+  const part = (value: Json): Json => (isSchema(value) ? map(value) : value);
+  return Object.fromEntries(
+    Object.entries(schema).map(([keyword, value]) => {
+      if (keyword === "properties") return [keyword, mapValues(value as JsonSchema, part)];
+      return [keyword, Array.isArray(value) ? value.map(part) : part(value)];
+    }),
+  );
+}
+
+const isSchema = (value: Json): value is JsonSchema =>
+  value !== null && typeof value === "object" && !Array.isArray(value);
