@@ -42,8 +42,8 @@ function ofBinary(e: Part<"binary">, scope: DimensionScope): Result {
   if (scalePoints(e) > 1)
     return fault(e, "unlike-terms", {
       what: "added",
-      left: "one temperature",
-      right: "another, unless one is a difference in K,",
+      left: "a temperature",
+      right: "another (a difference would be in K)",
     });
   if (sameDimension(left, right)) return left;
   const what = e.operator === "+" ? "added" : "subtracted";
@@ -89,7 +89,7 @@ function ofCall(e: Part<"call">, scope: DimensionScope): Result {
       return {
         code: "unlike-terms",
         ...arg.at,
-        data: { what: `taken by \`${e.name}\``, left: nameDimension(first), right: nameDimension(d) },
+        data: { what: `compared by \`${e.name}\``, left: nameDimension(first), right: nameDimension(d) },
       };
   }
   return f.gives(first ?? dimensions.ratio);

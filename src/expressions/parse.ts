@@ -207,7 +207,7 @@ function readUncertainty(reader: Reader, sign: Token, of: Expression): Uncertain
   const literal = of.type === "negate" ? of.of : of;
   const percent = token.unit.name === "%";
   if (percent && literal.type === "number" && sameDimension(literal.unit.dimension, dimensions.temperature))
-    return wrong("a percentage of a temperature has no meaning", "write it in K, like `35 degC ± 1 K`");
+    return wrong("a spread in % of a temperature has no meaning", "write it in K, like `35 degC ± 1 K`");
   const own = literal.type === "number" && literal.unit.name === "%";
   const kind = percent && !own ? "relative" : "absolute";
   return { kind, value: token.value, unit: token.unit, at };

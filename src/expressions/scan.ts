@@ -14,7 +14,7 @@ const word = /\p{L}[\p{L}\p{N}_.-]*/uy;
 const signs = /\+\/-|<=|>=|[+\-−*/^(),±<>·]/y;
 /** A unit after a number: no space inside but in brackets; `*`, `+` and `,` end it. */
 const unitStart = /[\p{L}%°℃℉]|1\/[\p{L}(]/uy;
-const unitPiece = /\([^()]*\)|\^[-−]?\d+(?:\.\d+)?|[\p{L}\p{N}%°℃℉⁻⁰¹²³⁴⁵⁶⁷⁸⁹·]+|\/(?=[\p{L}(%°])/uy;
+const unitPiece = /\([^()]*\)|\^[-−]?(?:\d+(?:\.\d+)?)?|[\p{L}\p{N}%°℃℉⁻⁰¹²³⁴⁵⁶⁷⁸⁹·]+|\/(?=[\p{L}(%°])/uy;
 
 /** Cuts a text into pieces; numbers take their unit with them and come out in SI. */
 export function scan(text: string): readonly Token[] | Fault {

@@ -175,7 +175,7 @@ function spreadFault({ kind, unit, at }: Uncertainty, dimension: Dimension): Fau
   const wrong = (why: string, fix: string): Fault => ({ code: "bad-uncertainty", ...at, data: { why, fix } });
   if (kind === "relative")
     return sameDimension(dimension, dimensions.temperature)
-      ? wrong("a percentage of a temperature has no meaning", "write it in K, like `35 degC ± 1 K`")
+      ? wrong("a spread in % of a temperature has no meaning", "write it in K, like `35 degC ± 1 K`")
       : undefined;
   if (sameDimension(unit.dimension, dimension)) return undefined;
   return isRatio(unit.dimension)

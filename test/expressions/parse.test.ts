@@ -125,6 +125,8 @@ test.each<[string, string, string]>([
   ["10 l/Min", "unknown-unit", "Min"],
   ["2 total", "unknown-unit", "total"],
   ["3 %%", "bad-unit", "%%"],
+  ["10 L^/min", "bad-unit", "L^/min"],
+  ["10 L^n", "bad-unit", "L^n"],
   ["1 + 3 W/m2/degC", "offset-unit", "degC"],
   ["a +", "bad-expression", ""],
   ["(a + b", "bad-expression", "("],

@@ -46,12 +46,12 @@ export const valueEntries = {
   }),
   "bad-uncertainty": entry<FaultData["bad-uncertainty"]>({
     severity: "error",
-    says: (d) => `uncertainty: ${d.why}`,
+    says: (d) => d.why,
     fix: (d) => d.fix,
   }),
   "unlike-terms": entry<FaultData["unlike-terms"]>({
     severity: "error",
-    says: (d) => `${d.left} and ${d.right} cannot be ${d.what} together`,
+    says: (d) => `${d.left} and ${d.right} cannot be ${d.what}`,
     fix: "make both the same kind of quantity, by their units or by multiplying or dividing",
   }),
   "bad-power": entry<FaultData["bad-power"]>({ severity: "error", says: (d) => d.why, fix: (d) => d.fix }),
