@@ -13,19 +13,19 @@ export interface Lu {
 /**
  * Gaussian elimination with partial pivoting; 2/3 n^3 operations.
  * @param a n x n, row-major; left as it is
- * @returns "singular" where a pivot is 0 or not finite, or so small beside its column that only rounding is left of it
+ * @returns "singular" where a pivot is not finite, or so small beside what was subtracted to make it that only rounding is left
  * @see G.H. Golub, C.F. Van Loan, Matrix Computations, 4th ed., Johns Hopkins 2013, sec. 3.4
  */
 export function factor(a: ArrayLike<number>, n: number): Lu | "singular" {
   const f = Float64Array.from(a);
   const rows = Int32Array.from({ length: n }, (_, i) => i);
-  const size = columnSizes(f, n);
   let sign = 1;
   for (let k = 0; k < n; k++) {
     let pivot = k;
     for (let i = k + 1; i < n; i++) if (Math.abs(f[i * n + k]) > Math.abs(f[pivot * n + k])) pivot = i;
-    const largest = Math.abs(f[pivot * n + k]);
-    if (!(largest > Number.EPSILON * n * 1e-2 * size[k]) || !Number.isFinite(largest)) return "singular";
+    const size = Math.abs(f[pivot * n + k]);
+    if (!(size > 4 * Number.EPSILON * summed(a, f, n, rows[pivot], pivot, k)) || !Number.isFinite(size))
+      return "singular";
     if (pivot !== k) {
       for (let j = 0; j < n; j++) {
         const held = f[k * n + j];
@@ -37,9 +37,9 @@ export function factor(a: ArrayLike<number>, n: number): Lu | "singular" {
       rows[pivot] = row;
       sign = -sign;
     }
-    const inverse = f[k * n + k];
+    const diagonal = f[k * n + k];
     for (let i = k + 1; i < n; i++) {
-      const l = f[i * n + k] / inverse;
+      const l = f[i * n + k] / diagonal;
       f[i * n + k] = l;
       if (l === 0) continue;
       for (let j = k + 1; j < n; j++) f[i * n + j] -= l * f[k * n + j];
@@ -83,9 +83,9 @@ export function determinant(lu: Lu): number {
   return product;
 }
 
-/** Largest magnitude in each column. */
-function columnSizes(a: Float64Array, n: number): Float64Array {
-  const size = new Float64Array(n);
-  for (let i = 0; i < n; i++) for (let j = 0; j < n; j++) size[j] = Math.max(size[j], Math.abs(a[i * n + j]));
-  return size;
+/** Sum of the magnitudes that entry (i, k) was made of before it became a pivot: its rounding error is a few 1e-16 of this. */
+function summed(a: ArrayLike<number>, f: Float64Array, n: number, row: number, i: number, k: number): number {
+  let sum = Math.abs(a[row * n + k]);
+  for (let j = 0; j < k; j++) sum += Math.abs(f[i * n + j] * f[j * n + k]);
+  return sum;
 }
