@@ -1,33 +1,21 @@
 import { readFileSync } from "node:fs";
 import type { Network } from "../../src/model/network.js";
 import type { Trial } from "../../src/model/trial.js";
-import { collector } from "../../src/problems/report.js";
-import { readYaml } from "../../src/read/yaml.js";
-import { resolveNetwork } from "../../src/resolve/network.js";
-import { resolveTrial } from "../../src/resolve/trial.js";
+import { parseNetwork } from "../../src/parse/network.js";
+import type { Parsed, Read } from "../../src/parse/parsed.js";
+import { parseTrial } from "../../src/parse/trial.js";
 
 const root = new URL("../../", import.meta.url);
 export const textOf = (path: string): string => readFileSync(new URL(path, root), "utf8");
 
-/** A network from its text; what is wrong with it is thrown, with its words. */
-export function networkOf(text: string, path = "network.yaml"): Network {
-  const { report, problems } = collector();
-  const tree = readYaml({ path, text }, report);
-  const network = tree && resolveNetwork(tree, path, report);
-  if (!network || problems.some((p) => p.severity === "error"))
-    throw new Error(problems.map((p) => p.message).join("; "));
-  return network;
-}
-
-/** A trial from its text, with the tables it names. */
-export function trialOf(text: string, read: (path: string) => string | undefined, path = "trial.yaml"): Trial {
-  const { report, problems } = collector();
-  const tree = readYaml({ path, text }, report);
-  const trial = tree && resolveTrial(tree, path, { read }, report);
-  if (!trial || problems.some((p) => p.severity === "error"))
-    throw new Error(problems.map((p) => p.message).join("; "));
-  return trial;
-}
+/** A network or trial from its text; whatever is wrong with it is thrown, in its words. */
+export const networkOf = (text: string, path = "network.yaml"): Network => wanted(parseNetwork(text, { path }));
+export const trialOf = (text: string, read: Read, path = "trial.yaml"): Trial => wanted(parseTrial(text, { path, read }));
 
 export const networkAt = (path: string): Network => networkOf(textOf(path), path);
 export const trialAt = (path: string): Trial => trialOf(textOf(path), textOf, path);
+
+function wanted<T>({ document, problems }: Parsed<T>): T {
+  if (!document) throw new Error(problems.map((p) => `${p.code}: ${p.message}`).join("\n"));
+  return document;
+}
