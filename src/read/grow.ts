@@ -18,7 +18,10 @@ interface Growth {
   readonly open: Set<Node>;
   readonly used: Set<string>;
   copies: number;
+  /** The tree is of no use, but there may be more to find. */
   failed: boolean;
+  /** There is no going on. */
+  stopped: boolean;
 }
 
 /** Our tree of a parsed document, aliases copied in. Undefined where that cannot be. */
@@ -31,21 +34,21 @@ export function growTree(source: Source, document: Document.Parsed, report: Repo
     used: new Set(),
     copies: 0,
     failed: false,
+    stopped: false,
   };
   const tree = grow(document.contents, growth, 0, 0);
-  if (!growth.failed)
+  if (!growth.stopped)
     for (const [name, node] of growth.anchors) if (!growth.used.has(name)) unusedAnchor(name, node, growth);
   return growth.failed ? undefined : tree;
 }
 
 function grow(node: Node | null, growth: Growth, depth: number, end: number): Tree {
-  if (growth.failed) return emptyNode(growth, end);
-  if (!node) return emptyNode(growth, end);
+  if (growth.stopped || !node) return emptyNode(growth, end);
   const at = spanOf(node, growth.source);
-  if (depth > deepest) return fail(growth, () => growth.report("too-deep", at, { limit: deepest }), end);
+  if (depth > deepest) return stop(growth, () => growth.report("too-deep", at, { limit: deepest }), end);
   if (isAlias(node)) return growAlias(node, growth, depth);
   if (growth.open.size > 0 && ++growth.copies > mostCopies)
-    return fail(growth, () => growth.report("too-many-copies", at, { limit: mostCopies }), end);
+    return stop(growth, () => growth.report("too-many-copies", at, { limit: mostCopies }), end);
   refuseTag(node, growth);
   const name = (node as { anchor?: string }).anchor;
   // An anchor may be named anew: an alias means the latest before it.
@@ -66,6 +69,7 @@ function mapNode(pairs: readonly Pair<Node, Node | null>[], growth: Growth, dept
   const places = new Map<string, Span>();
   for (const pair of pairs) {
     const key = keyNode(pair.key, growth);
+    const value = grow(pair.value, growth, depth + 1, key?.at.to ?? at.from);
     if (!key) continue;
     const earlier = places.get(key.text);
     if (earlier) {
@@ -74,7 +78,7 @@ function mapNode(pairs: readonly Pair<Node, Node | null>[], growth: Growth, dept
       continue;
     }
     places.set(key.text, key.at);
-    entries.push({ key, value: grow(pair.value, growth, depth + 1, key.at.to) });
+    entries.push({ key, value });
   }
   return { type: "map", at, entries };
 }
@@ -86,6 +90,7 @@ function keyNode(node: Node | null, growth: Growth): ScalarNode | undefined {
     growth.failed = true;
   };
   if (!node || !isScalar(node)) {
+    if (isAlias(node)) growth.used.add(node.source);
     const found = isMap(node) ? "a map" : isSeq(node) ? "a list" : isAlias(node) ? "an alias" : "nothing";
     return bad(() => growth.report("key-not-text", at, { found }));
   }
@@ -110,8 +115,8 @@ function growAlias(node: Alias, growth: Growth, depth: number): Tree {
   const target = growth.anchors.get(name);
   growth.used.add(name);
   if (!target)
-    return fail(growth, () => growth.report("unknown-anchor", at, { name, quoted: quote(`*${name}`) }), at.from);
-  if (growth.open.has(target)) return fail(growth, () => growth.report("anchor-circle", at, { name }), at.from);
+    return refuse(growth, () => growth.report("unknown-anchor", at, { name, quoted: quote(`*${name}`) }), at.from);
+  if (growth.open.has(target)) return refuse(growth, () => growth.report("anchor-circle", at, { name }), at.from);
   growth.open.add(target);
   const copy = grow(target, growth, depth, at.from);
   growth.open.delete(target);
@@ -137,8 +142,16 @@ function refuseTag(node: Node, growth: Growth): void {
   growth.failed = true;
 }
 
-function fail(growth: Growth, report: () => void, end: number): ScalarNode {
-  if (!growth.failed) report();
+/** Nothing more is looked at: every further place would say the same. */
+function stop(growth: Growth, report: () => void, end: number): ScalarNode {
+  if (!growth.stopped) report();
+  growth.stopped = true;
+  growth.failed = true;
+  return emptyNode(growth, end);
+}
+
+function refuse(growth: Growth, report: () => void, end: number): ScalarNode {
+  report();
   growth.failed = true;
   return emptyNode(growth, end);
 }

@@ -65,10 +65,14 @@ const words: Partial<Record<ErrorCode, (fault: SyntaxFault) => void>> = {
   MULTILINE_IMPLICIT_KEY: reportColon,
   RESOURCE_EXHAUSTION: ({ at, report }) => report("too-deep", { ...at, to: at.from + 1 }, { limit: 100 }),
   BAD_DQ_ESCAPE: ({ at, report }) =>
-    report("yaml-syntax", at, {
-      says: "a backslash in double quotes begins an escape that YAML does not have",
-      fix: "use single quotes, in which a backslash is a backslash",
-    }),
+    report(
+      "yaml-syntax",
+      { ...at, to: at.from + 2 },
+      {
+        says: "a backslash in double quotes begins an escape that YAML does not have",
+        fix: "use single quotes, in which a backslash is a backslash",
+      },
+    ),
   BAD_DIRECTIVE: ({ here, report }) =>
     report("yaml-syntax", here, {
       says: "a line that begins with `%` is a YAML directive, which no document uses",

@@ -19,9 +19,16 @@ function mend(tree: Tree, report: Report): Tree {
 function mendMap(map: MapNode, report: Report): MapNode {
   const braces = map.at.source.text[map.at.from] === "{";
   const entries: Entry[] = [];
-  for (const entry of map.entries) {
-    if (braces && isLone(map, entry)) mendLone(entry, entries, report);
-    else entries.push({ key: entry.key, value: mend(entry.value, report) });
+  for (let i = 0; i < map.entries.length; i++) {
+    const entry = { key: map.entries[i].key, value: mend(map.entries[i].value, report) };
+    if (!braces) entries.push(entry);
+    else if (isLone(map, entry)) entries.push(mendGlued(entry, report));
+    else {
+      const tails = map.entries.slice(i + 1).map((e) => (isLone(map, e) ? e.key : undefined));
+      const cut = mendCut(entry, tails, report);
+      entries.push(cut.entry);
+      i += cut.tails;
+    }
   }
   return { ...map, entries };
 }
@@ -32,39 +39,42 @@ function isLone(map: MapNode, { key, value }: Entry): boolean {
   return key.plain && value.type === "scalar" && value.empty && value.text === "" && noColon;
 }
 
-/** `{b:1 L}`, or the tail of a value that a comma cut: mended onto `entries`. Any other stays as it is. */
-function mendLone(entry: Entry, entries: Entry[], report: Report): void {
+/** `{b:1 L}`; any other lone key stays as it is. */
+function mendGlued(entry: Entry, report: Report): Entry {
   const { key } = entry;
-  const glued = /^([A-Za-z][\w-]*):(\S.*)$/s.exec(key.text);
-  if (glued) {
-    report("colon-without-space", key.at, {
-      key: key.text,
-      corrected: correctedLine(key.at, `${glued[1]}: ${glued[2]}`),
-    });
-    const cut = key.at.from + glued[1].length;
-    entries.push({ key: part(key, key.at.from, cut), value: part(key, cut + 1, key.at.to) });
-    return;
-  }
-  const before = entries.at(-1)?.value;
-  const meant = before?.type === "scalar" && before.plain && !before.empty ? joined(before, key) : undefined;
-  if (!meant) {
-    entries.push(entry);
-    return;
-  }
-  report("comma-in-braces", meant.value.at, {
-    text: part(meant.value, meant.value.at.from, meant.value.at.to).text,
-    corrected: correctedLine(meant.value.at, meant.written),
-  });
-  entries[entries.length - 1] = { key: entries[entries.length - 1].key, value: meant.value };
+  const [, name, value] = /^([A-Za-z][\w-]*):(\S.*)$/s.exec(key.text) ?? [];
+  if (name === undefined) return entry;
+  report("colon-without-space", key.at, { key: key.text, corrected: correctedLine(key.at, `${name}: ${value}`) });
+  const colon = key.at.from + name.length;
+  return { key: part(key, key.at.from, colon), value: part(key, colon + 1, key.at.to) };
 }
 
-/** The value that a comma cut, if it looks like one: a call whose bracket is open, or a decimal comma. */
-function joined(head: ScalarNode, tail: ScalarNode): { value: ScalarNode; written: string } | undefined {
-  const whole = part(head, head.at.from, tail.at.to);
-  if (count(head.text, "(") > count(head.text, ")")) return { value: whole, written: `"${whole.text}"` };
-  if (!/\d$/.test(head.text) || !/^\d/.test(tail.text)) return undefined;
-  const written = `${head.text}.${tail.text}`;
-  return { value: { ...whole, text: written }, written };
+/** A value whose tail a comma cut off: a call whose bracket is open, or a decimal comma. `tails`: the lone keys that follow. */
+function mendCut(
+  entry: Entry,
+  tails: readonly (ScalarNode | undefined)[],
+  report: Report,
+): { entry: Entry; tails: number } {
+  const head = entry.value;
+  const none = { entry, tails: 0 };
+  if (head.type !== "scalar" || !head.plain || head.empty || !tails[0]) return none;
+  let n = 0;
+  let whole = head;
+  let written = "";
+  for (let tail = tails[0]; tail && openBrackets(whole.text) > 0; tail = tails[n] as ScalarNode) {
+    whole = part(head, head.at.from, tail.at.to);
+    written = `"${whole.text}"`;
+    n++;
+  }
+  if (n === 0 && /\d$/.test(head.text) && /^\d/.test(tails[0].text)) {
+    written = `${head.text}.${tails[0].text}`;
+    whole = { ...part(head, head.at.from, tails[0].at.to), text: written };
+    n = 1;
+  }
+  if (n === 0) return none;
+  const text = part(head, whole.at.from, whole.at.to).text;
+  report("comma-in-braces", whole.at, { text, corrected: correctedLine(whole.at, written) });
+  return { entry: { key: entry.key, value: whole }, tails: n };
 }
 
 /** A plain scalar of a stretch of the same source. */
@@ -74,4 +84,4 @@ const part = (node: ScalarNode, from: number, to: number): ScalarNode => ({
   text: node.at.source.text.slice(from, to),
 });
 
-const count = (text: string, letter: string): number => text.split(letter).length - 1;
+const openBrackets = (text: string): number => text.split("(").length - text.split(")").length;
