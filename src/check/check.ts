@@ -1,6 +1,6 @@
 import type { Network } from "../model/network.js";
-import { nearest } from "../problems/nearest.js";
 import type { Report } from "../problems/report.js";
+import { nearest } from "../text/nearest.js";
 import type { Dimension } from "../units/dimension.js";
 import { formatQuantity } from "../units/format.js";
 import { parameterBounds, requirements, sharesBesideRest } from "./bounds.js";

@@ -1,7 +1,7 @@
-import { nearest } from "../problems/nearest.js";
 import type { Report } from "../problems/report.js";
 import { type DocumentKind, documentKinds, type Shape } from "../schema/shape.js";
 import { documents, type Fault } from "../schema/validators.js";
+import { nearest } from "../text/nearest.js";
 import type { Span } from "../text/source.js";
 import { firstLine, type Located, locate, narrow } from "./locate.js";
 import { plainOf } from "./plain.js";

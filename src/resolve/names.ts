@@ -1,5 +1,7 @@
-import type { Expression } from "../expressions/ast.js";
+import { namesIn } from "../expressions/ast.js";
+import { isFault } from "../expressions/fault.js";
 import { parseValue } from "../expressions/parse.js";
+import { reservedNames } from "../expressions/reserved.js";
 import type { Named } from "../model/network.js";
 import type { Value } from "../model/value.js";
 import type { Report } from "../problems/report.js";
@@ -8,12 +10,9 @@ import type { Span } from "../text/source.js";
 import { type Dimension, type DimensionName, dimensions } from "../units/dimension.js";
 import { resolveValue, type Scope } from "./value.js";
 
-/** Words that cannot name anything: language.md, "Names". */
-const reserved = new Set("rest all t T pi gas-constant exp log log10 sqrt abs min max tanh step-up".split(" "));
-
 /** Reports a name that breaks the rules; true where it is fine. */
 export function checkName(key: ScalarNode, report: Report): boolean {
-  if (reserved.has(key.text)) report("reserved-name", key.at, { name: key.text });
+  if (reservedNames.has(key.text)) report("reserved-name", key.at, { name: key.text });
   else if (!/^[A-Za-z][A-Za-z0-9_-]*$/.test(key.text)) report("bad-name", key.at, { name: key.text });
   else return true;
   return false;
@@ -125,7 +124,7 @@ function details(
 
 /** Slots in dependency order; circles are reported once each, printed, and left out. */
 function dependencyOrder(declared: readonly Declared[], slots: ReadonlyMap<string, number>, report: Report): number[] {
-  const needs = declared.map((d) => namesIn(d.node).flatMap((n) => slots.get(n) ?? []));
+  const needs = declared.map((d) => namesUsed(d.node).flatMap((n) => slots.get(n) ?? []));
   const state = new Uint8Array(declared.length); // 0 new, 1 open, 2 done, 3 in a circle
   const order: number[] = [];
   const path: number[] = [];
@@ -154,19 +153,10 @@ function dependencyOrder(declared: readonly Declared[], slots: ReadonlyMap<strin
   return order;
 }
 
-function namesIn(node: Tree | undefined): string[] {
+function namesUsed(node: Tree | undefined): readonly string[] {
   if (node?.type !== "scalar") return [];
-  const parsed = parseValue(node.text);
-  if (!("expression" in parsed)) return [];
-  const names: string[] = [];
-  const walk = (e: Expression): void => {
-    if (e.type === "name") names.push(e.name);
-    else if (e.type === "negate") walk(e.of);
-    else if (e.type === "binary") [e.left, e.right].forEach(walk);
-    else if (e.type === "call") e.args.forEach(walk);
-  };
-  walk(parsed.expression);
-  return names;
+  const written = parseValue(node.text);
+  return isFault(written) ? [] : namesIn(written.expression);
 }
 
 /** Dimension by its name, or names. */

@@ -1,5 +1,6 @@
 import type { UnitBook } from "../model/network.js";
 import type { Value } from "../model/value.js";
+import { siUnit } from "../units/describe.js";
 import { dimensionKey, dimensions } from "../units/dimension.js";
 import { parseUnit } from "../units/parse.js";
 import type { Unit } from "../units/unit.js";
@@ -31,7 +32,7 @@ export function unitBook(values: readonly (Value | undefined)[], flow: Value | u
     time,
     unitFor: (dimension) =>
       book.get(dimensionKey(dimension as Unit["dimension"])) ?? {
-        name: "SI",
+        name: siUnit(dimension as Unit["dimension"]),
         factor: 1,
         offset: 0,
         dimension: dimension as Unit["dimension"],

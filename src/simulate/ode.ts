@@ -1,6 +1,6 @@
 import { integrate } from "../numerics/integrate.js";
 import { multiply } from "../numerics/sparse.js";
-import { readOff } from "./exact.js";
+import { directAt } from "./exact.js";
 import { type Answer, driveAt, type TracerEngine } from "./linear-system.js";
 
 /** Relative tolerance of a step, and the absolute one beside the largest state that the drive can make. */
@@ -45,10 +45,13 @@ export const ode: TracerEngine = {
       const answer = { value: new Float64Array(q.times.length), integral: new Float64Array(q.times.length) };
       q.times.forEach((u, i) => {
         if (u < 0) return;
+        const { states, weights } = q.signal;
         const state = solved.states[at.get(u) ?? -1];
-        if (state) readOff(q, state.subarray(0, n), state.subarray(n), drive, u, answer, i);
-        else if (q.signal.states.length === 0) readOff(q, start, start, drive, u, answer, i);
-        else answer.value[i] = answer.integral[i] = Number.NaN;
+        const direct = directAt(q, drive, u);
+        const sum = (offset: number) => states.reduce((m, k, w) => m + weights[w] * state[offset + k], 0);
+        const known = state !== undefined || states.length === 0;
+        answer.value[i] = known ? direct.value + sum(0) : Number.NaN;
+        answer.integral[i] = known ? direct.integral + sum(n) : Number.NaN;
       });
       return answer;
     });

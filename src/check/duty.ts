@@ -1,0 +1,51 @@
+import type { Duty } from "../model/duty.js";
+import type { Network } from "../model/network.js";
+import type { Report } from "../problems/report.js";
+import { nearest } from "../text/nearest.js";
+import type { Span } from "../text/source.js";
+import { describeDimension, exampleFor, nameDimension } from "../units/describe.js";
+import { sameDimension } from "../units/dimension.js";
+
+/** Does a duty fit a network: are its feeds, places and constants there, and does it say what every feed brings? */
+export function checkDuty(network: Network, duty: Duty, report: Report): void {
+  const feeds = network.feeds.map((f) => f.name);
+  const look = (name: string, at: Span, wanted: string, among: readonly string[]): boolean => {
+    if (among.includes(name)) return true;
+    report("unknown-place", at, { name, nearest: nearest(name, among), wanted });
+    return false;
+  };
+  for (const [name, { at }] of duty.flows) look(name, at, "feed", feeds);
+  for (const [name, { at }] of duty.feeds) look(name, at, "feed", feeds);
+  if (duty.chemistry || duty.feeds.size > 0) {
+    for (const feed of feeds) if (!duty.feeds.has(feed)) report("feed-not-given", duty.at, { feed });
+  }
+  checkSettings(network, duty, look, report);
+  const places = [...network.outlets, ...network.compartments, ...network.feeds].map((p) => p.name);
+  const members = network.compartments.flatMap(({ name, counts }) =>
+    Array.from({ length: counts.repeat ?? 0 }, (_, i) => `${name}.${i + 1}`),
+  );
+  for (const { at, place } of duty.report) {
+    if (at !== undefined) look(at, place, "outlet, compartment or feed", [...places, ...members]);
+  }
+}
+
+function checkSettings(
+  network: Network,
+  duty: Duty,
+  look: (name: string, at: Span, wanted: string, among: readonly string[]) => boolean,
+  report: Report,
+): void {
+  const own = network.names.filter((n) => n.role !== "feed-flow");
+  const names = [...own.map((n) => n.name), ...(duty.chemistry?.constants.map((c) => c.name) ?? [])];
+  for (const [name, { at, value }] of duty.settings) {
+    if (!look(name, at, "constant", names)) continue;
+    const wanted = own.find((n) => n.name === name)?.value.dimension;
+    if (!wanted || sameDimension(wanted, value.dimension)) continue;
+    report("wrong-dimension", value.at, {
+      text: value.at.source.text.slice(value.at.from, value.at.to),
+      got: nameDimension(value.dimension),
+      wanted: describeDimension(wanted),
+      example: exampleFor(wanted),
+    });
+  }
+}
