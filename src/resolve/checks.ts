@@ -1,6 +1,6 @@
 import type { Check } from "../model/network.js";
 import type { Report } from "../problems/report.js";
-import { child, itemsOf, textOf, type Tree } from "../read/tree.js";
+import { child, itemsOf, type Tree, textOf } from "../read/tree.js";
 import { dimensions } from "../units/dimension.js";
 import { resolveValue, type Scope } from "./value.js";
 
@@ -13,8 +13,12 @@ export function resolveChecks(node: Tree | undefined, scope: Scope, report: Repo
       const of = textOf(item, what);
       if (of === undefined) continue;
       const equals = resolveValue(child(item, "equals"), subjects[what], scope, report);
-      const within = child(item, "within") ? resolveValue(child(item, "within"), dimensions.ratio, scope, report)?.of([]) : 0.001;
-      return equals && within !== undefined ? [{ at: item.at, what, of, ofAt: child(item, what)?.at ?? item.at, equals, within }] : [];
+      const within = child(item, "within")
+        ? resolveValue(child(item, "within"), dimensions.ratio, scope, report)?.of([])
+        : 0.001;
+      return equals && within !== undefined
+        ? [{ at: item.at, what, of, ofAt: child(item, what)?.at ?? item.at, equals, within }]
+        : [];
     }
     return [];
   });

@@ -35,7 +35,11 @@ export function resolveNetwork(tree: MapNode, path: string, report: Report): Net
   const { requires, requireNames } = resolveRequirements(child(tree, "requires"), scope, report);
   const checks = resolveChecks(child(tree, "checks"), scope, report);
   const title = child(tree, "network");
-  const values = valuesOf(feeds, names.map((n) => n.value), compartments);
+  const values = valuesOf(
+    feeds,
+    names.map((n) => n.value),
+    compartments,
+  );
   return {
     title: textOf(tree, "network") ?? "",
     at: title?.at ?? tree.at,

@@ -19,7 +19,8 @@ export function resolveRequirements(
     }
     const [, leftText, sign, rightText] = sides;
     const left = resolveValue(part(item, 0, leftText), "any", scope, report);
-    const right = left && resolveValue(part(item, item.text.length - rightText.length, rightText), left.dimension, scope, report);
+    const right =
+      left && resolveValue(part(item, item.text.length - rightText.length, rightText), left.dimension, scope, report);
     if (!left || !right) return [];
     requireNames.push(...left.uses, ...right.uses);
     const turn = sign.startsWith("<") ? 1 : -1;

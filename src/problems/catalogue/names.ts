@@ -37,7 +37,8 @@ export const nameEntries = {
   }),
   "start-outside-bounds": entry<{ name: string; value: string; low: string; high: string }>({
     severity: "error",
-    says: ({ name, value, low, high }) => `the start value of '${name}', ${value}, lies outside its bounds ${low} to ${high}`,
+    says: ({ name, value, low, high }) =>
+      `the start value of '${name}', ${value}, lies outside its bounds ${low} to ${high}`,
     fix: ({ low, high }) => `choose a value between ${low} and ${high}, or widen \`between\``,
   }),
   "bounds-reversed": entry<{ name: string; low: string; high: string }>({
