@@ -64,7 +64,8 @@ export function bodyBlock(
   const top = Math.max(half.height, stack);
   const words = bodyWords(body, sheet, scale);
   const own = caption(words, 0, -top - captionGap - extent(words).height, "middle");
-  const lower = hangingRow(body.name, half.height, sheet, scale, hanging);
+  const edge = stack > half.height ? stack + 3 : half.height; // what hangs keeps clear of the streams at the sides
+  const lower = hangingRow(body.name, edge, sheet, scale, hanging);
   const side = Math.max(half.width, own.box.width / 2, lower.width / 2);
   return {
     name: body.name,
@@ -72,8 +73,8 @@ export function bodyBlock(
     half,
     bodies: [{ body, box: { x: -half.width, y: -half.height, ...size } }, ...lower.bodies],
     captions: [own, ...lower.captions],
-    arcs: lower.arcs,
-    reach: { left: side, right: side, above: -own.box.y, below: Math.max(top, half.height + lower.height) },
+    arcs: lower.arcs.map((a) => (a.top === edge ? { ...a, top: half.height } : a)),
+    reach: { left: side, right: side, above: -own.box.y, below: Math.max(top, edge + lower.height) },
   };
 }
 

@@ -23,14 +23,16 @@ export function heightsOf(
   const joints = routed
     .filter((r) => r.via === "gaps" && r.trip.role === "forward")
     .flatMap((r) =>
-      r.way.slice(1).map((to, k) => ({
-        from: r.way[k],
-        to,
-        weight: r.trip.width,
-        // where the stream leaves and arrives, from the seats' middles
-        out: ports.get(r.way[k])?.right.get(r.trip) ?? 0,
-        in: ports.get(to)?.left.get(r.trip) ?? 0,
-      })),
+      r.way.slice(1).map(
+        (to, k): Joint => ({
+          from: r.way[k],
+          to,
+          weight: r.trip.width,
+          // where the stream leaves and arrives, from the seats' middles
+          out: ports.get(r.way[k])?.right.get(r.trip) ?? 0,
+          in: ports.get(to)?.left.get(r.trip) ?? 0,
+        }),
+      ),
     );
   const y = new Map([...ordered.seats.values()].map((s) => [s.id, s.height * 60]));
   const settle = (column: readonly string[], from: "left" | "right"): void => {
@@ -55,7 +57,65 @@ export function heightsOf(
     for (const column of ordered.columns.toReversed().slice(1)) settle(column, "right");
     for (const column of ordered.columns.slice(1)) settle(column, "left");
   }
+  tighten(ordered, joints, y, reach);
   return y;
+}
+
+interface Joint {
+  readonly from: string;
+  readonly to: string;
+  readonly weight: number;
+  readonly out: number;
+  readonly in: number;
+}
+
+/**
+ * Moves what hangs together by straight streams as one, toward the ends of its bent streams, as far as there is room:
+ * takes out the slack that column-wise sweeps leave, without bending anything.
+ */
+function tighten(
+  ordered: Ordered,
+  joints: readonly Joint[],
+  y: Map<string, number>,
+  reach: (id: string) => Reach,
+): void {
+  const rise = (j: Joint): number => y.get(j.to)! + j.in - (y.get(j.from)! + j.out);
+  const unit = new Map([...y.keys()].map((id) => [id, new Set([id])]));
+  for (const j of joints) {
+    if (Math.abs(rise(j)) > 0.01 || unit.get(j.from) === unit.get(j.to)) continue;
+    const both = new Set([...unit.get(j.from)!, ...unit.get(j.to)!]);
+    for (const id of both) unit.set(id, both);
+  }
+  // light units move first: they yield to heavy ones
+  const weight = (u: Set<string>): number =>
+    joints.reduce((sum, j) => sum + (u.has(j.from) || u.has(j.to) ? j.weight : 0), 0);
+  const units = [...new Set(unit.values())].sort((a, b) => weight(a) - weight(b));
+  for (let pass = 0; pass < 3; pass++) {
+    for (const u of units) {
+      const bent = joints.filter((j) => u.has(j.from) !== u.has(j.to));
+      const pull = bent.reduce((sum, j) => sum + j.weight, 0);
+      if (pull === 0) continue;
+      const wish = bent.reduce((sum, j) => sum + j.weight * (u.has(j.from) ? rise(j) : -rise(j)), 0) / pull;
+      const room = Math.min(...[...u].map((id) => roomToward(id, Math.sign(wish), u, ordered, y, reach)));
+      const by = Math.sign(wish) * Math.max(0, Math.min(Math.abs(wish), room));
+      for (const id of u) y.set(id, y.get(id)! + by);
+    }
+  }
+}
+
+function roomToward(
+  id: string,
+  way: number,
+  own: ReadonlySet<string>,
+  { seats, columns }: Ordered,
+  y: ReadonlyMap<string, number>,
+  reach: (id: string) => Reach,
+): number {
+  const { column, rank } = seats.get(id)!;
+  const next = columns[column][rank + way];
+  if (way === 0 || next === undefined || own.has(next)) return Number.POSITIVE_INFINITY;
+  const [upper, lower] = way > 0 ? [id, next] : [next, id];
+  return y.get(lower)! - y.get(upper)! - (reach(upper).below + seatGap + reach(lower).above);
 }
 
 /**

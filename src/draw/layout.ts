@@ -80,7 +80,13 @@ export function layOut(sheet: FlowSheet): Layout {
     left: feedsAlone ? columns.right[0] + 20 : within.x - padding,
     right: outlets.size > 0 ? columns.left[last] - 20 : within.x + within.width + padding,
   };
-  const dead = deadRow(sheet, scale, sides.left + padding, within.y + within.height + 22);
+  const everything = union(shifted.flatMap((s) => [...s.bodies.map((p) => p.box), ...s.captions.map((c) => c.box)]));
+  const lowest = (box: Box): number => box.y + box.height + 22;
+  const rowAt = (top: number): ReturnType<typeof deadRow> => deadRow(sheet, scale, sides.left + padding, top);
+  const tight = rowAt(lowest(within));
+  // a row that is wider than the vessel must also clear the outlets' words
+  const fits = tight.captions.every((c) => c.box.x + c.box.width < sides.right);
+  const dead = fits ? tight : rowAt(Math.max(lowest(within), lowest(everything)));
   const bodies = [...shifted.flatMap((s) => s.bodies), ...dead.bodies];
   const captions = [...shifted.flatMap((s) => s.captions), ...dead.captions];
   const arcs = shifted.flatMap((s) => s.arcs);

@@ -47,6 +47,7 @@ export function drawNetwork(sheet: FlowSheet, options: DrawOptions = {}): Svg {
       viewBox: [view.x, view.y, view.width, view.height].map(px).join(" "),
       width: view.width,
       height: view.height,
+      style: "max-width:100%;height:auto",
       role: "img",
     },
     `<title>${escapeText(sheet.title)}</title><desc>${escapeText(inWords(sheet))}</desc>` +
@@ -94,7 +95,10 @@ function drawRibbon({ trip, spine, back, via }: Ribbon): Svg {
   }
   const kind = `ribbon${back ? " back" : ""}${accent}`;
   const heads = via === "gaps" ? [] : chevrons(spine, trip.width, `chevron${accent}`);
-  return [halo, path(d, kind, { "stroke-width": trip.width }), ...heads].join("");
+  // what runs back is pale, with a rim: still a line where it is thin
+  const rim = back ? path(d, `ribbon${accent}`, { "stroke-width": trip.width }) : "";
+  const width = back ? Math.max(0, trip.width - 2) : trip.width;
+  return [halo, rim, width > 0 ? path(d, kind, { "stroke-width": width }) : "", ...heads].join("");
 }
 
 /** Chevrons along the level piece of a lane. */

@@ -25,7 +25,7 @@ export function stirredBody(box: Box, repeat = 1, backflow = false): Svg {
   for (let k = 1; k < repeat; k++) {
     const x = box.x + k * step;
     parts.push(line(x, box.y, x, box.y + box.height, "wall"));
-    if (backflow) parts.push(returnNotch(x, box, Math.min(step, box.height) * 0.16));
+    if (backflow) parts.push(returnNotch(x, box, Math.min(step, box.height) * 0.11));
   }
   return group("body stirred", parts);
 }

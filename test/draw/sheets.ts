@@ -51,10 +51,11 @@ const sheet = (title: string, bodies: SheetBody[], streams: SheetStream[], says?
 });
 
 export const sheets: Readonly<Record<string, FlowSheet>> = {
-  "one-tank": sheet("One stirred tank", [feed("feed"), stirred("tank", 500), outlet("product")], [
-    stream("feed", "tank", 10, ""),
-    stream("tank", "product", 10, ""),
-  ]),
+  "one-tank": sheet(
+    "One stirred tank",
+    [feed("feed"), stirred("tank", 500), outlet("product")],
+    [stream("feed", "tank", 10, ""), stream("tank", "product", 10, "")],
+  ),
   v3: sheet(
     "Ester hydrolysis vessel V-3, as built",
     [
@@ -75,7 +76,15 @@ export const sheets: Readonly<Record<string, FlowSheet>> = {
   ),
   loop: sheet(
     "Loop reactor with settling loss",
-    [feed("feed"), junction("tee"), tubular("riser", 120), stirred("drum", 900, 3, true), dead("sludge", 220), outlet("product"), outlet("purge")],
+    [
+      feed("feed"),
+      junction("tee"),
+      tubular("riser", 120),
+      stirred("drum", 900, 3, true),
+      dead("sludge", 220),
+      outlet("product"),
+      outlet("purge"),
+    ],
     [
       stream("feed", "tee", 10, ""),
       stream("tee", "riser", 40),
@@ -114,8 +123,9 @@ export const sheets: Readonly<Record<string, FlowSheet>> = {
       exchange("lee", "nook", 0.05),
     ],
   ),
-  closed: sheet("Flask on total return", [stirred("flask", 2), tubular("line", 0.1)], [
-    stream("flask", "line", 0.3),
-    stream("line", "flask", 0.3),
-  ]),
+  closed: sheet(
+    "Flask on total return",
+    [stirred("flask", 2), tubular("line", 0.1)],
+    [stream("flask", "line", 0.3), stream("line", "flask", 0.3)],
+  ),
 };
