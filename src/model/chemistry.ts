@@ -18,7 +18,7 @@ export interface Chemistry {
   readonly needsTemperature: boolean;
   readonly reactions: readonly Reaction[];
   /**
-   * Every way to give the species dimensions (molar, mass or number per volume, or a bare ratio) in which each rate is
+   * Every way to give the species dimensions (molar, mass or number per volume) in which each rate is
    * concentration per time: one dimension per species. Several where the laws leave it open (all first order).
    */
   readonly bases: readonly (readonly Dimension[])[];

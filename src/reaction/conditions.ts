@@ -104,3 +104,10 @@ function scales(feeds: readonly Float64Array[], n: number, kinds: readonly Dimen
     return kin > 0 ? kin : 1;
   });
 }
+
+/** What a duty sets in a network: flows and values by name, as `compile` takes them. SI. */
+export function networkSettings(duty: Duty): Record<string, number> {
+  const flows = [...duty.flows].map(([feed, { value }]) => [`${feed}.flow`, value.of([])] as const);
+  const values = [...duty.settings].map(([name, { value }]) => [name, value.of([])] as const);
+  return Object.fromEntries([...flows, ...values]);
+}

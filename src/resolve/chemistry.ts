@@ -1,0 +1,126 @@
+import { namesIn } from "../expressions/ast.js";
+import { compileExpression } from "../expressions/compile.js";
+import { differentiate } from "../expressions/differentiate.js";
+import type { Chemistry, Reaction, Species } from "../model/chemistry.js";
+import type { Report } from "../problems/report.js";
+import { child, entriesOf, itemsOf, type MapNode, type Tree, textOf } from "../read/tree.js";
+import { type Dimension, dimensions } from "../units/dimension.js";
+import { findBases } from "./bases.js";
+import { type ChemicalConstants, resolveConstants } from "./chemical-constants.js";
+import { checkName } from "./names.js";
+import { explainRates } from "./rate-dimension.js";
+import { resolveReaction, type WrittenReaction } from "./reaction.js";
+import { aboveZero } from "./sign.js";
+import { bindValue, emptyScope, resolveValue, type Scope } from "./value.js";
+
+/**
+ * Binds a chemistry: species and constants to slots, rate laws and their exact derivatives to closures, and finds in which
+ * concentrations the laws are right.
+ * @param tree a document that has passed the shape check
+ * @returns undefined once an error is reported; warnings go to `report` beside a result
+ */
+export function resolveChemistry(tree: MapNode, path: string, report: Report): Chemistry | undefined {
+  const declared = entriesOf(child(tree, "species"));
+  const species = resolveSpecies(child(tree, "species"), report);
+  const names = declared.map((e) => e.key.text);
+  const constants = resolveConstants(child(tree, "constants"), names.length, new Set(names), report);
+  const scope = scopeOf(names, constants);
+  const declaredConstants = entriesOf(child(tree, "constants")).map((e) => e.key.text);
+  const nodes = itemsOf(child(tree, "reactions"));
+  const written = nodes.flatMap((node) => {
+    const one = resolveReaction(node, names, declaredConstants, scope, report);
+    return one && namesFound(one, scope, constants.whole, report) ? [one] : [];
+  });
+  if (!constants.whole || written.length < nodes.length || species.length < declared.length) return undefined;
+
+  const laws = written.map(({ rate, makes }) => ({ rate, changes: makes.map((m) => m.species) }));
+  const others = (name: string): Dimension | undefined => scope.dimension(name);
+  const bases = findBases(names, laws, others);
+  if (bases.length === 0) {
+    explainRates(names, written, others, report);
+    return undefined;
+  }
+  unusedNames(species, constants, written, report);
+  const temperatureSlot = names.length + constants.constants.length;
+  const uses = [
+    ...written.flatMap((w) => [...namesIn(w.rate), ...w.mentions]),
+    ...constants.constants.flatMap((c) => c.value.uses),
+  ];
+  const title = child(tree, "chemistry");
+  return {
+    title: textOf(tree, "chemistry") ?? "",
+    at: title?.at ?? tree.at,
+    path,
+    species,
+    constants: constants.constants,
+    order: constants.order,
+    temperatureSlot,
+    needsTemperature: uses.includes("T"),
+    reactions: written.map((w) => bindReaction(w, names, (name) => scope.slot(name))),
+    bases,
+  };
+}
+
+function resolveSpecies(node: Tree | undefined, report: Report): Species[] {
+  return entriesOf(node).flatMap(({ key, value }): Species[] => {
+    if (!checkName(key, report)) return [];
+    const written = child(value, "molar-mass");
+    const molarMass = written && resolveValue(written, dimensions["molar mass"], emptyScope, report);
+    if (written && !(molarMass && aboveZero(`the molar mass of '${key.text}'`, molarMass, false, report))) return [];
+    return [{ name: key.text, at: key.at, molarMass }];
+  });
+}
+
+/** Slots of an Env: species, constants, temperature. Dimensions of all but the species, which are still open. */
+function scopeOf(species: readonly string[], { constants, dimensions: found }: ChemicalConstants): Scope {
+  const slots = new Map([...species, ...constants.map((c) => c.name), "T"].map((name, i) => [name, i]));
+  return {
+    slot: (name) => slots.get(name),
+    dimension: (name) => (name === "T" ? dimensions.temperature : found.get(name)),
+    names: () => [...slots.keys()],
+  };
+}
+
+/** Reports names in a law that nothing has; where constants failed already, their names are no news. */
+function namesFound(w: WrittenReaction, scope: Scope, whole: boolean, report: Report): boolean {
+  if (namesIn(w.rate).every((name) => scope.slot(name) !== undefined)) return true;
+  if (whole) bindValue(w.rateNode, { expression: w.rate }, "any", scope, report);
+  return false;
+}
+
+function bindReaction(
+  w: WrittenReaction,
+  species: readonly string[],
+  slotOf: (name: string) => number | undefined,
+): Reaction {
+  const used = namesIn(w.rate);
+  const slopes = species.flatMap((name, i) =>
+    used.includes(name) ? [{ i, slope: compileExpression(differentiate(w.rate, name), slotOf) }] : [],
+  );
+  return {
+    text: w.text,
+    at: w.at,
+    counts: w.counts,
+    makes: w.makes,
+    rate: compileExpression(w.rate, slotOf),
+    gradient(env, out) {
+      out.fill(0);
+      for (const { i, slope } of slopes) out[i] = slope(env);
+    },
+  };
+}
+
+function unusedNames(
+  species: readonly Species[],
+  { constants }: ChemicalConstants,
+  written: readonly WrittenReaction[],
+  report: Report,
+): void {
+  const named = [
+    ...written.flatMap((w) => [...namesIn(w.rate), ...w.mentions]),
+    ...constants.flatMap((c) => c.value.uses),
+  ];
+  const used = new Set(named);
+  for (const { name, at } of species) if (!used.has(name)) report("unused-name", at, { name, role: "species" });
+  for (const { name, at } of constants) if (!used.has(name)) report("unused-name", at, { name, role: "constant" });
+}

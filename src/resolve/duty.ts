@@ -1,0 +1,125 @@
+import type { Chemistry } from "../model/chemistry.js";
+import type { Duty, DutyFeed, Placed } from "../model/duty.js";
+import type { Report } from "../problems/report.js";
+import { child, type Entry, entriesOf, itemsOf, type MapNode, type Tree, textOf } from "../read/tree.js";
+import { nearest } from "../text/nearest.js";
+import type { Span } from "../text/source.js";
+import { dimensions } from "../units/dimension.js";
+import { concentrationBases } from "./bases.js";
+import { massEquations, settleFeeds } from "./feed-basis.js";
+import { resolveReportLine } from "./report-line.js";
+import { aboveZero } from "./sign.js";
+import { emptyScope, resolveValue, type Wanted } from "./value.js";
+
+/** Whoever can read files hands over the chemistry that a duty names; undefined once its problems are reported. */
+export interface DutyFiles {
+  chemistry(relativePath: string, at: Span): Chemistry | undefined;
+}
+
+/**
+ * Binds an operating point: flows, feeds, constants set otherwise, temperature, the figures that count.
+ * Whether its names exist in a network is `checkDuty`'s to say.
+ * @param tree a document that has passed the shape check
+ * @returns undefined once an error is reported
+ */
+export function resolveDuty(tree: MapNode, path: string, files: DutyFiles, report: Report): Duty | undefined {
+  let good = true;
+  const tell: Report = (code, at, data, also) => {
+    if (code !== "mass-equation") good = false;
+    report(code, at, data, also);
+  };
+  const chemistryNode = child(tree, "chemistry");
+  const named = textOf(tree, "chemistry");
+  const chemistry = named === undefined || !chemistryNode ? undefined : files.chemistry(named, chemistryNode.at);
+  const flows = placed(child(tree, "flows"), () => dimensions.flow, "the flow of feed", false, tell);
+  const temperatureNode = child(tree, "temperature");
+  const temperature = temperatureNode && resolveValue(temperatureNode, dimensions.temperature, emptyScope, tell);
+  aboveZero("the temperature", temperature, false, tell);
+  if (named !== undefined && !chemistry) return undefined; // its own problems are reported; names cannot be looked up
+  const title = child(tree, "duty");
+  const at = title?.at ?? tree.at;
+  const given = resolveWith(child(tree, "with"), chemistry, tell);
+  const feeds = resolveFeeds(child(tree, "feeds"), chemistry, tell);
+  const species = chemistry ? chemistry.species.map((s) => s.name) : fedNames(feeds);
+  const asked = itemsOf(child(tree, "report")).flatMap((item) =>
+    item.type === "scalar" ? (resolveReportLine(item, species, tell) ?? []) : [],
+  );
+  if (chemistry?.needsTemperature && !temperatureNode) {
+    tell("temperature-missing", chemistryNode?.at ?? at, { chemistry: chemistry.title });
+  }
+  const settled = chemistry && good ? settleFeeds(chemistry, feeds, tell) : { feeds, concentrations: pure(feeds) };
+  if (chemistry && settled) massEquations(chemistry, settled, asked, tell);
+  if (!good || !settled) return undefined;
+  return {
+    title: textOf(tree, "duty") ?? "",
+    at,
+    path,
+    chemistry,
+    flows,
+    ...given,
+    ...settled,
+    temperature,
+    report: asked,
+  };
+}
+
+/** Values under names; each above zero, or not below it. */
+function placed(
+  node: Tree | undefined,
+  wanted: (name: string) => Wanted,
+  what: string,
+  zero: boolean,
+  report: Report,
+): Map<string, Placed> {
+  const found = new Map<string, Placed>();
+  for (const { key, value } of entriesOf(node)) {
+    const resolved = resolveValue(value, wanted(key.text), emptyScope, report);
+    if (!resolved || !aboveZero(`${what} '${key.text}'`, resolved, zero, report)) continue;
+    found.set(key.text, { at: key.at, value: resolved });
+  }
+  return found;
+}
+
+/** Names that the chemistry has are its constants; all others are left for the network. */
+function resolveWith(
+  node: Tree | undefined,
+  chemistry: Chemistry | undefined,
+  report: Report,
+): Pick<Duty, "with" | "settings"> {
+  const constants = new Map(chemistry?.constants.map((c) => [c.name, c.value.dimension]));
+  const own = new Map<string, Placed>();
+  const settings = new Map<string, Placed>();
+  for (const { key, value } of entriesOf(node)) {
+    const resolved = resolveValue(value, constants.get(key.text) ?? "any", emptyScope, report);
+    if (resolved) (constants.has(key.text) ? own : settings).set(key.text, { at: key.at, value: resolved });
+  }
+  return { with: own, settings };
+}
+
+function resolveFeeds(node: Tree | undefined, chemistry: Chemistry | undefined, report: Report): Map<string, DutyFeed> {
+  const known = chemistry?.species.map((s) => s.name);
+  const isSpecies = ({ key }: Entry): boolean => {
+    if (!known || known.includes(key.text)) return true;
+    report("unknown-place", key.at, { name: key.text, nearest: nearest(key.text, known), wanted: "species" });
+    return false;
+  };
+  const feeds = new Map<string, DutyFeed>();
+  for (const { key, value } of entriesOf(node)) {
+    const entries = entriesOf(value).filter(isSpecies);
+    const inner: Tree = value.type === "map" ? { ...value, entries } : value;
+    const what = `in feed '${key.text}', the concentration of`;
+    feeds.set(key.text, { at: key.at, species: placed(inner, () => concentrationBases, what, true, report) });
+  }
+  return feeds;
+}
+
+const fedNames = (feeds: ReadonlyMap<string, DutyFeed>): string[] => [
+  ...new Set([...feeds.values()].flatMap((f) => [...f.species.keys()])),
+];
+
+/** Dimensions where nothing reacts: as fed. */
+const pure = (feeds: ReadonlyMap<string, DutyFeed>): Duty["concentrations"] =>
+  fedNames(feeds).map((s) => {
+    const first = [...feeds.values()].find((f) => f.species.has(s));
+    return first?.species.get(s)?.value.dimension ?? dimensions["molar concentration"];
+  });

@@ -1,0 +1,47 @@
+import type { Reported } from "../model/duty.js";
+import type { Report } from "../problems/report.js";
+import type { ScalarNode } from "../read/tree.js";
+import { nearest } from "../text/nearest.js";
+
+const name = "([A-Za-z][A-Za-z0-9_-]*)";
+const place = "(?: at ([A-Za-z][A-Za-z0-9_.-]*))?";
+
+/** The forms of a report line, each with the places of its parts in the match. */
+const forms: readonly { form: RegExp; what: Reported["what"]; versus: boolean }[] = [
+  { form: new RegExp(`^conversion of ${name}${place}$`), what: "conversion", versus: false },
+  { form: new RegExp(`^log-removal of ${name}${place}$`), what: "log-removal", versus: false },
+  { form: new RegExp(`^yield of ${name} from ${name}${place}$`), what: "yield", versus: true },
+  { form: new RegExp(`^selectivity of ${name} over ${name}${place}$`), what: "selectivity", versus: true },
+];
+const ofTracer = /^t(\d{1,2}) at ([A-Za-z][A-Za-z0-9_.-]*)$/;
+const ofSpecies = new RegExp(`^${name} at ([A-Za-z][A-Za-z0-9_.-]*)$`);
+const ofTime = /^time .+ at .+ (above|below) /;
+
+/** Reads one line of `report:`. Undefined once its problem is reported. */
+export function resolveReportLine(node: ScalarNode, species: readonly string[], report: Report): Reported | undefined {
+  const text = node.text.trim().replace(/\s+/g, " ");
+  const line = { text, place: node.at, of: "", versus: undefined, percent: undefined, at: undefined };
+  const known = (asked: string | undefined): boolean => {
+    if (asked === undefined || species.includes(asked)) return true;
+    report("unknown-place", node.at, { name: asked, nearest: nearest(asked, species), wanted: "species" });
+    return false;
+  };
+  if (ofTime.test(text)) {
+    report("not-yet", node.at, { what: `'${text}'` });
+    return undefined;
+  }
+  for (const { form, what, versus } of forms) {
+    const match = form.exec(text);
+    if (!match) continue;
+    const [, of, second] = match;
+    const found = { ...line, what, of, versus: versus ? second : undefined, at: match[versus ? 3 : 2] };
+    return known(of) && known(found.versus) ? found : undefined;
+  }
+  const single = ofSpecies.exec(text);
+  const tracer = ofTracer.exec(text);
+  if (tracer && !species.includes(`t${tracer[1]}`) && Number(tracer[1]) > 0)
+    return { ...line, what: "tracer-time", percent: Number(tracer[1]), at: tracer[2] };
+  if (single) return known(single[1]) ? { ...line, what: "concentration", of: single[1], at: single[2] } : undefined;
+  report("bad-report-line", node.at, { text });
+  return undefined;
+}
