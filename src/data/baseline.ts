@@ -26,8 +26,12 @@ export function baselineOf(
   mode: "constant" | "drift",
 ): Baseline | undefined {
   const early = range(0, before);
-  const late = settled(y, before, sd);
-  if (mode === "drift" && early.length >= 2 && late.length >= 3) return line(t, y, [...early, ...late], sd);
+  const end = lastTwentieth(y, before);
+  if (mode === "drift" && early.length >= 2 && end.length > 0) {
+    const through = line(t, y, [...early, ...end], sd);
+    if (isLevel(t, y, end, before, sd, through.slope)) return through;
+  }
+  const late = end.length > 0 && isLevel(t, y, end, before, sd, 0) ? end : [];
   const use = early.length >= 3 || (early.length > 0 && late.length === 0) ? early : late;
   if (use.length === 0) return undefined;
   const level = use.reduce((sum, i) => sum + y[i], 0) / use.length;
@@ -45,15 +49,29 @@ export function baselineOf(
 /** The value of a baseline at time t. */
 export const baselineAt = (b: Baseline, t: number): number => b.level + b.slope * (t - b.middle);
 
-/** The last points, where they no longer fall: the last twentieth (3 at least) is level with the one before it. */
-function settled(y: Float64Array, before: number, sd: number): number[] {
+/** The last points, 3 at least; none where the record is too short to spare them. */
+function lastTwentieth(y: Float64Array, before: number): number[] {
   const n = y.length;
   const size = Math.max(3, Math.floor(n / 20));
-  if (n - before < 4 * size) return [];
-  const mean = (from: number): number => range(from, from + size).reduce((sum, i) => sum + y[i], 0) / size;
-  const fall = Math.abs(mean(n - size) - mean(n - 2 * size));
+  return n - before < 4 * size ? [] : range(n - size, n);
+}
+
+/** Does the end follow a line of this slope? From the points before it to it, the mean falls as the line does. */
+function isLevel(
+  t: Float64Array,
+  y: Float64Array,
+  end: readonly number[],
+  before: number,
+  sd: number,
+  slope: number,
+): boolean {
+  const size = end.length;
+  const earlier = end.map((i) => i - size);
+  const mean = (values: Float64Array, use: readonly number[]): number =>
+    use.reduce((sum, i) => sum + values[i], 0) / size;
+  const fall = mean(y, end) - mean(y, earlier) - slope * (mean(t, end) - mean(t, earlier));
   const [low, high] = extent(y.subarray(before));
-  return fall <= Math.max(2 * sd * Math.sqrt(2 / size), 1e-3 * (high - low)) ? range(n - size, n) : [];
+  return Math.abs(fall) <= Math.max(2 * sd * Math.sqrt(2 / size), 1e-3 * (high - low));
 }
 
 function line(t: Float64Array, y: Float64Array, use: readonly number[], sd: number): Baseline {

@@ -1,3 +1,5 @@
+import { roughness } from "./noise.js";
+
 /** How a curve ends, and what lies beyond its last point. Times in the curve's own unit. */
 export type Tail =
   /** It has come down to nothing. */
@@ -18,20 +20,34 @@ export type Tail =
   | { readonly is: "power" | "open"; readonly level: number };
 
 /**
- * The tail of a curve that ends near zero. Closed where the mean of the last points is under 3 of its standard errors or
- * 0.1 % of the peak. Else the window of the exponential is grown back from the last point as long as the
- * slopes of its two halves agree and it stays under half the peak.
+ * The tail of a curve that ends near zero. Closed where the mean of the last points is under 3 of its standard errors, or
+ * so low that even at that level a whole record more would add under 0.2 % to the area (2 % where no exponential
+ * can be seen). Else the window of the exponential is grown back from the last point as long as the slopes of its two
+ * halves agree and it stays under half the peak.
  */
 export function tailOf(t: Float64Array, y: Float64Array, sd: Float64Array): Tail {
   const n = t.length;
   let peak = 0;
-  for (let i = 0; i < n; i++) if (y[i] > y[peak]) peak = i;
+  let area = 0;
+  for (let i = 0; i < n; i++) {
+    if (y[i] > y[peak]) peak = i;
+    if (i > 0) area += ((y[i] + y[i - 1]) / 2) * (t[i] - t[i - 1]);
+  }
   const last = Math.min(n - 1 - peak, Math.max(1, Math.floor(n / 50)));
   if (last < 1) return { is: "open", level: y[n - 1] };
   let level = 0;
   for (let i = n - last; i < n; i++) level += y[i] / last;
-  const noise = Math.max(1e-3 * y[peak], (3 * sd[n - 1]) / Math.sqrt(last));
-  if (level <= noise) return { is: "closed" };
+  const more = level * (t[n - 1] - Math.min(0, t[0]));
+  // The scatter of the end itself: a sharp front makes the roughness of the whole curve look like noise.
+  const end = n - Math.max(8, Math.floor(n / 10));
+  const scatter = end > peak ? Math.min(sd[n - 1], roughness(t.subarray(end), y.subarray(end))) : sd[n - 1];
+  if (level <= (3 * scatter) / Math.sqrt(last) || more <= 2e-3 * area) return { is: "closed" };
+  const tail = decayOf(t, y, peak, level);
+  return tail.is === "open" && more <= 0.02 * area ? { is: "closed" } : tail;
+}
+
+function decayOf(t: Float64Array, y: Float64Array, peak: number, level: number): Tail {
+  const n = t.length;
   let first = n - 1;
   while (first > peak && y[first - 1] > 0 && y[first - 1] < 0.5 * y[peak]) first--;
   if (n - first < 4) return { is: "open", level };
