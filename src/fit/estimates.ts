@@ -3,7 +3,7 @@ import { type Autocorrelation, autocorrelationOf } from "./autocorrelation.js";
 import { type LinearTheory, linearTheory } from "./covariance.js";
 import { constantSlope, fullJacobian } from "./jacobian.js";
 import type { Estimate, FittedParameter, Matrix, Nuisance } from "./result.js";
-import type { Settled } from "./settle.js";
+import { freedomOf, type Settled } from "./settle.js";
 
 /** Estimates with their uncertainty, and what the findings need to know of it. */
 export interface Estimates {
@@ -22,13 +22,13 @@ export interface Estimates {
 
 /** Standard errors, intervals and correlations at the end of a fit. */
 export function estimatesOf({ problem, x, at }: Settled): Estimates {
-  const { setup, linear } = problem;
+  const { setup } = problem;
   const n = setup.coordinates.length;
   const columns = fullJacobian(problem, x, at);
   const plain = linearTheory(columns.filter((_, j) => j < n || j >= x.length));
   const whole = setup.held.length > 0 && x.length > n ? linearTheory(columns) : plain;
-  const freedom = Math.max(0, setup.observations - n - linear);
-  const variance = freedom > 0 ? at.ofData / freedom : Number.NaN;
+  const freedom = freedomOf(problem);
+  const variance = freedom > 0 ? at.ofAll / freedom : Number.NaN;
   const autocorrelation = autocorrelationOf(setup.blocks, at.residuals);
   const slopes = setup.coordinates.map((c, j) => c.slope(x[j]));
   const constants = setup.constants.flatMap((c) => {

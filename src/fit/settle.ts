@@ -29,17 +29,18 @@ export function settle(
   let settled: Settled = { problem, weights: first, x: found.x, at, converged: found.converged };
   if (!withPriors && !first.moving) return settled;
   let x = Float64Array.from({ length: found.x.length + setup.held.length }, (_, j) => found.x[j] ?? 0);
+  let pull = 0;
   for (let round = 0; round < 20; round++) {
     const { problem: before, at: old } = settled;
     const weights = first.moving ? weightsFor(setup, { ...old, before: before.weight }) : first;
-    // The spread is that of the residuals under the new weights.
-    const spread = spreadOf(problemWith(setup, weights.weight, []), x);
+    const spread = spreadOf(problemWith(setup, weights.weight, priorsOf(setup, 1)), x, pull);
     const next = problemWith(setup, weights.weight, priorsOf(setup, spread));
     const end = descend(next, x, fully, watch);
     const here = next.evaluate(end.x);
     if (!here) return settled;
     const moved = end.x.reduce((most, v, j) => Math.max(most, Math.abs(v - x[j])), 0);
     x = Float64Array.from(end.x);
+    pull = (here.ofAll - here.ofData) / spread ** 2;
     const still = round > 0 && moved < 1e-8;
     settled = { problem: next, weights, x, at: here, converged: end.converged && (still || round < 19) };
     if (still || watch.cancelled()) return settled;
@@ -47,12 +48,22 @@ export function settle(
   return settled;
 }
 
-/** Standard deviation of one weighted residual at a point; 1 where it cannot be told. */
-function spreadOf(problem: Problem, x: Float64Array): number {
-  const { setup, linear } = problem;
-  const freedom = setup.observations - setup.coordinates.length - linear;
+/** Degrees of freedom of a problem: the prior of a parameter counts as an observation, a held fact and its prior cancel. */
+export function freedomOf({ setup, linear, priors }: Problem): number {
+  const n = setup.coordinates.length;
+  return Math.max(0, setup.observations + priors.filter((p) => p.index < n).length - n - linear);
+}
+
+/**
+ * Standard deviation s of one weighted residual at a point, such that data and priors together come to as many s^2 as there are
+ * degrees of freedom; 1 where it cannot be told.
+ * @param pull  sum of squared deviations of the priors there, each in its own standard deviation
+ */
+function spreadOf(problem: Problem, x: Float64Array, pull: number): number {
+  const freedom = freedomOf(problem);
   const at = problem.evaluate(x);
-  return at && freedom > 0 && at.ofData > 0 ? Math.sqrt(at.ofData / freedom) : 1;
+  if (!at || freedom === 0 || at.ofData === 0) return 1;
+  return Math.sqrt(at.ofData / (freedom > pull ? freedom - pull : freedom));
 }
 
 function priorsOf(setup: Setup, spread: number): Prior[] {

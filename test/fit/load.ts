@@ -10,7 +10,8 @@ export const textOf = (path: string): string => readFileSync(new URL(path, root)
 
 /** A network or trial from its text; whatever is wrong with it is thrown, in its words. */
 export const networkOf = (text: string, path = "network.yaml"): Network => wanted(parseNetwork(text, { path }));
-export const trialOf = (text: string, read: Read, path = "trial.yaml"): Trial => wanted(parseTrial(text, { path, read }));
+export const trialOf = (text: string, read: Read, path = "trial.yaml"): Trial =>
+  wanted(parseTrial(text, { path, read }));
 
 export const networkAt = (path: string): Network => networkOf(textOf(path), path);
 export const trialAt = (path: string): Trial => trialOf(textOf(path), textOf, path);
