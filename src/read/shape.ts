@@ -5,7 +5,7 @@ import { nearest } from "../text/nearest.js";
 import type { Span } from "../text/source.js";
 import { firstLine, type Located, locate, narrow } from "./locate.js";
 import { plainOf } from "./plain.js";
-import { child, type MapNode } from "./tree.js";
+import { child, entriesOf, type MapNode, type Tree } from "./tree.js";
 import { found, wanted } from "./wording.js";
 
 /** What the file says it is: its first key, or the only one of the five that it has; undefined where it has none. */
@@ -25,7 +25,8 @@ export function checkShape(tree: MapNode, kind: DocumentKind, report: Report): b
   const is = documentKind(tree);
   if (is !== kind) return wrongDocument(tree, is, kind, report);
   const { shape, validate } = documents[kind];
-  if (validate(plainOf(tree))) return true;
+  const clear = kind !== "network" || noEmptyChange(child(tree, "change"), report);
+  if (validate(plainOf(tree))) return clear;
   const places = new Set<string>();
   const findings: { at: Span; tell: () => void }[] = [];
   for (const fault of validate.errors ?? []) {
@@ -36,7 +37,19 @@ export function checkShape(tree: MapNode, kind: DocumentKind, report: Report): b
     places.add(place);
   }
   for (const { tell } of findings.sort((a, b) => a.at.from - b.at.from)) tell();
-  return findings.length === 0;
+  return clear && findings.length === 0;
+}
+
+/** In a change `null` removes; a key left empty (its lines commented out, say) may not do so in silence. */
+function noEmptyChange(change: Tree | undefined, report: Report): boolean {
+  let clear = true;
+  for (const { key, value } of entriesOf(change)) {
+    if (value.type === "scalar" && value.empty && value.text === "") {
+      report("empty-in-change", key.at, { key: key.text });
+      clear = false;
+    } else clear = noEmptyChange(value, report) && clear;
+  }
+  return clear;
 }
 
 function wrongDocument(tree: MapNode, is: DocumentKind | undefined, wanted: DocumentKind, report: Report): false {

@@ -59,6 +59,11 @@ export const shapeEntries = {
     says: (d) => `'${d.key}' has no value`,
     fix: (d) => (d.example ? `write a value, such as \`${d.key}: ${d.example}\`` : "write a value, or remove the key"),
   }),
+  "empty-in-change": entry<{ key: string }>({
+    severity: "error",
+    says: (d) => `'${d.key}' is left empty; in a change that would remove it`,
+    fix: (d) => `write \`${d.key}: null\` to remove it, or give it a value`,
+  }),
   "wrong-shape": entry<{ key: string; found: string; wanted: string; example: string | undefined }>({
     severity: "error",
     says: (d) => `${d.found} stands at '${d.key}', where ${d.wanted} is wanted`,

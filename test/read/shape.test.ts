@@ -1,0 +1,149 @@
+import { describe, expect, test } from "vitest";
+import { examples } from "./documents.js";
+import { check } from "./read.js";
+
+const network = (rest: string) => check(`network: n\nformat: 1\n${rest}`);
+const trial = (rest: string) => check(`trial: t\nformat: 1\n${rest}`);
+
+test.each(Object.entries(examples))("the example of the manual passes: %s", (_, text) => {
+  expect(check(text).problems).toEqual([]);
+});
+
+test("a number in a text, a title of digits, a quoted number of tanks", () => {
+  expect(
+    check("network: 2024\nformat: 1\nnotes: 7\ncompartments: {a: {kind: stirred, volume: 1 L}}\n").findings,
+  ).toEqual([]);
+});
+
+describe("which document it is", () => {
+  test.each([
+    ["netwrk: a\nformat: 1", "network", ["unknown-document netwrk"]],
+    ["trial: a\nformat: 1", "network", ["wrong-document trial"]],
+    ["format: 1\nnetwork: a", "network", []],
+    ["network: a", "network", ["missing-format network"]],
+    ["network: a\nformat: 2", "network", ["unsupported-format 2"]],
+    ["network: a\nformat: one", "network", ["unsupported-format one"]],
+    ["network:\nformat: 1", "network", ["empty-value network"]],
+  ] as const)("%j as %s", (text, kind, findings) => {
+    expect(check(text, kind).findings).toEqual(findings);
+  });
+});
+
+describe("one finding a place, at the place", () => {
+  test.each([
+    ["unknown key", "feds: {}", ["unknown-key feds"]],
+    ["missing key", "feeds: {f: {to: x}}", ["missing-key f"]],
+    ["two missing keys", "parameters: {a: {}}\nfeeds: {f: {}}", ["missing-key a", "missing-key f", "missing-key f"]],
+    ["empty value", "constants: {a: }", ["empty-value a"]],
+    ["empty map of names", "feeds:\noutlets: [a]", ["empty-value feeds"]],
+    ["a value for a list", "outlets: product", ["wrong-shape product"]],
+    ["a map for a value", "feeds: {f: {flow: {a: 1}, to: x}}", ["wrong-shape {a: 1}"]],
+    ["a list for a value or a map", "constants: {a: [1]}", ["wrong-shape [1]"]],
+    ["a text for a compartment", "compartments: {a: tank}", ["wrong-shape tank"]],
+    ["wrong choice", "parameters: {a: {value: 1, spacing: lag}}", ["wrong-choice lag"]],
+    ["wrong kind", "compartments: {a: {kind: stired, volume: 1 L}}", ["wrong-choice stired"]],
+    ["missing kind", "compartments: {a: {volume: 1 L}}", ["missing-key a"]],
+    ["not whole", "compartments: {a: {kind: stirred, volume: 1 L, repeat: 2.5}}", ["not-whole 2.5"]],
+    ["too few", "compartments: {a: {kind: stirred, volume: 1 L, repeat: 0}}", ["not-whole 0"]],
+    [
+      "a key of another kind",
+      "compartments: {a: {kind: tubular, volume: 1 L, to: b, repeat: 2}}",
+      ["unknown-key repeat"],
+    ],
+    ["three bounds", "parameters: {a: {value: 1, between: [0,5 %, 60 %]}}", ["wrong-length [0,5 %, 60 %]"]],
+    ["bad name as key", "constants: {3c: 1}", ["bad-name 3c"]],
+    ["bad name as value", "compartments: {a: {kind: tubular, volume: 1 L, to: b c}}", ["bad-name b c"]],
+    ["none of several keys", "checks: [{equals: 3 L}]", ["one-of {equals: 3 L}"]],
+    [
+      "two of several keys",
+      "checks: [{volume: a, flow: b, equals: 3 L}]",
+      ["one-of {volume: a, flow: b, equals: 3 L}"],
+    ],
+  ])("%s", (_, text, findings) => {
+    expect(network(text).findings).toEqual(findings);
+  });
+
+  test("names of the language's own machinery are only names", () => {
+    expect(network("constants: {constructor: 1, toString: 2, hasOwnProperty: 3, valueOf: 4}").findings).toEqual([]);
+    expect(network("constructor: 1").findings).toEqual(["unknown-key constructor"]);
+    expect(network("compartments: {a: {kind: constructor}}").findings).toEqual(["wrong-choice constructor"]);
+    expect(network("compartments: {a: {kind: dead, volume: 1 L, toString: 1}}").findings).toEqual([
+      "unknown-key toString",
+    ]);
+  });
+});
+
+describe("what this version does not honour is refused", () => {
+  test.each([
+    ["based-on: a.yaml", ["not-yet based-on"]],
+    ["basis: mass", ["not-yet basis"]],
+    ["compartments: {a: {kind: dispersed, volume: 1 L, peclet: 3}}", ["not-yet dispersed"]],
+    ["compartments: {a: {kind: part, use: x.yaml}}", ["not-yet part"]],
+    ["compartments: {a: {kind: stirred, volume: 1 L, to: b, backflow: 3 L/min}}", ["not-yet backflow"]],
+    ["compartments: {a: {kind: stirred, volume: 1 L, to: b, stagnant: {held: 3 L}}}", ["not-yet stagnant"]],
+    ["parameters: {a: {value: 1, per: trial}}", ["not-yet per"]],
+  ])("%s", (text, findings) => {
+    expect(network(text).findings).toEqual(findings);
+  });
+
+  test.each([
+    ["tracer: {half-life: 15 h}", "not-yet tracer"],
+    ["contents: {corner: 2 g/L}", "not-yet contents"],
+    ["flows: {feed: {file: x.csv}}", "not-yet feed"],
+  ])("trial with %s", (text, finding) => {
+    expect(trial(`injection: {at: feed, pulse: 1 g}\nreadings: []\n${text}`).findings).toEqual([finding]);
+  });
+
+  test("forms of a reading", () => {
+    const { findings } = trial(
+      "injection: {at: feed, pulse: 1 g}\nreadings:\n  - {at: {a: 60 %, b: rest}, limits: {below: 1 g/L}, noise: {counting: {over: 1 s}}}",
+    );
+    expect(findings).toEqual(["not-yet at", "not-yet limits", "not-yet counting"]);
+  });
+
+  test("forms of a duty and of a chemistry", () => {
+    const duty =
+      "duty: d\nformat: 1\nfeeds: {feed: {A: {from: 1 mol/L, to: 2 mol/L}, temperature: 25 degC}}\nheat: adiabatic\n";
+    expect(check(duty).findings).toEqual(["not-yet A", "not-yet temperature", "not-yet heat"]);
+    const chemistry =
+      "chemistry: c\nformat: 1\nspecies: {A: {}}\nreactions: [{equation: A -> A, rate: A, heat: 1 kJ/mol}]\nmedium: {}\n";
+    expect(check(chemistry).findings).toEqual(["not-yet heat", "not-yet medium"]);
+  });
+});
+
+describe("a change", () => {
+  const change = (rest: string) => network(`change: {${rest}}`);
+
+  test.each([
+    ["parameters: {bypass: {value: 2 %}}", []],
+    ["compartments: {corner: null, bulk: {volume: 3 L}}", []],
+    ["outlets: null, constants: {a: null}", []],
+    ["parametrs: {}", ["unknown-key parametrs"]],
+    ["compartments: {bulk: {volum: 3 L}}", ["unknown-key volum"]],
+    ["compartments: {bulk: {kind: cascade}}", ["not-yet cascade"]],
+    ["parameters: {bypass: {value: [2]}}", ["wrong-shape [2]"]],
+    ["basis: mass", ["not-yet basis"]],
+    ["parameters: {bypass: }", ["empty-in-change bypass"]],
+  ])("%s", (text, findings) => {
+    expect(change(text).findings).toEqual(findings);
+  });
+
+  test("stands alone", () => {
+    expect(network("change: {}\noutlets: [a]").findings).toEqual(["unknown-key outlets"]);
+  });
+});
+
+test("injections and readings one or many", () => {
+  const one = "injection: {at: feed, step: 2 g/L}\nreadings: [{at: out}]";
+  const many = "injection: [{at: feed, pulse: 1 g}, {at: feed, step: {from: 0 g/L, to: 1 g/L}}]\nreadings: [{at: out}]";
+  expect([trial(one).findings, trial(many).findings]).toEqual([[], []]);
+  expect(trial(many.replace("pulse: 1 g", "puls: 1 g")).findings).toEqual([
+    "one-of {at: feed, puls: 1 g}",
+    "unknown-key puls",
+  ]);
+});
+
+test("findings name the nearest key", () => {
+  const [{ fix }] = network("feds: {}").problems;
+  expect(fix).toBe("did you mean `feeds`?");
+});
