@@ -1,0 +1,102 @@
+import { kindValues } from "../compile/evaluate.js";
+import type { Plant, PlantStream } from "../compile/plant.js";
+import type { Compartment } from "../model/network.js";
+import { dimensions } from "../units/dimension.js";
+import { skipsBodies } from "./routes.js";
+import { amount, typeset } from "./scale.js";
+import type { BodyRole, FlowSheet, SheetBody, SheetStream, SheetUnit } from "./sheet.js";
+
+/** What a drawing of a plant may show besides its bodies and streams; names as in the file (`chain.2` marks `chain`). */
+export interface SheetOptions {
+  readonly injections?: readonly string[];
+  readonly probes?: readonly string[];
+  /** A few words behind a body's volume, by name: an interval, a finding. */
+  readonly notes?: ReadonlyMap<string, string>;
+  /** Bodies and streams (`feed>product`) that the reader should look at. */
+  readonly accents?: ReadonlySet<string>;
+}
+
+/** The flow sheet of a balanced plant: its file's names, its solved flows, its file's units. */
+export function flowSheet(plant: Plant, options: SheetOptions = {}): FlowSheet {
+  const { network } = plant;
+  const units = { volume: network.units.unitFor(dimensions.volume), flow: network.units.unitFor(dimensions.flow) };
+  const named = (name: string, role: BodyRole): SheetBody => withOptions({ name, volume: 0, role }, options);
+  const bodies = [
+    ...plant.feeds.map((f) => named(f.name, "feed")),
+    ...network.compartments.map((c) => withOptions(bodyOf(c, plant), options)),
+    ...plant.outlets.map((o) => named(o.name, "outlet")),
+  ];
+  return {
+    title: network.title,
+    says: vesselLine(plant, units),
+    bodies,
+    streams: streamsOf(plant, bodies, units.flow, options),
+    units,
+  };
+}
+
+function bodyOf(c: Compartment, { env }: Plant): SheetBody {
+  const values = kindValues(c, env);
+  const volume = c.kind.volume(values);
+  const role = !c.kind.flows ? "dead" : c.kind.keys.volume === undefined ? "junction" : "body";
+  return { name: c.name, volume, role, aspect: c.kind.aspect(values), picture: (box) => c.kind.picture(box, values) };
+}
+
+function withOptions(body: SheetBody, { injections, probes, notes, accents }: SheetOptions): SheetBody {
+  const here = (names: readonly string[] | undefined): boolean =>
+    names?.some((n) => n.split(".")[0] === body.name) ?? false;
+  const marks = [...(here(injections) ? (["injection"] as const) : []), ...(here(probes) ? (["probe"] as const) : [])];
+  const note = notes?.get(body.name);
+  return {
+    ...body,
+    ...(marks.length > 0 ? { marks } : {}),
+    ...(note === undefined ? {} : { note }),
+    ...(accents?.has(body.name) ? { accent: true } : {}),
+  };
+}
+
+function streamsOf(
+  { streams }: Plant,
+  bodies: readonly SheetBody[],
+  unit: SheetUnit,
+  { accents }: SheetOptions,
+): readonly SheetStream[] {
+  const role = new Map(bodies.map((b) => [b.name, b.role]));
+  const onward = streams.filter((s) => s.role === "forward");
+  return streams.map((s): SheetStream => {
+    const bypass = s.role === "forward" && skipsBodies(s, onward, (name) => role.get(name) === "body");
+    // the only stream of a terminal carries what the terminal's own words say
+    const alone =
+      (role.get(s.from) === "feed" && streams.filter((o) => o.from === s.from).length === 1) ||
+      (role.get(s.to) === "outlet" && streams.filter((o) => o.to === s.to).length === 1 && plain(s));
+    return {
+      from: s.from,
+      to: s.to,
+      flow: s.flow,
+      role: bypass ? "bypass" : s.role,
+      label: alone ? "" : label(s, unit),
+      ...(accents?.has(`${s.from}>${s.to}`) ? { accent: true } : {}),
+    };
+  });
+}
+
+/** "1 L/min (10 %)": the flow, and a share or name as the file writes it. */
+function label(s: PlantStream, unit: SheetUnit): string {
+  const flow = amount(s.flow, unit);
+  const written = typeset(s.written.trim());
+  return plain(s) || written === flow || written.length > 24 ? flow : `${flow} (${written})`;
+}
+
+const plain = (s: PlantStream): boolean => s.written === "all" || s.written === "rest";
+
+/** "vessel 1000 L, of which 120 L out of reach; feed 10 L/min; mean time 100 min" */
+function vesselLine(plant: Plant, units: { readonly volume: SheetUnit; readonly flow: SheetUnit }): string {
+  const { total, active, dead } = plant.volume;
+  const feed = plant.feeds.reduce((sum, f) => sum + f.flow, 0);
+  const volume = `vessel ${amount(total, units.volume)}`;
+  const lost = dead > 0 ? `, of which ${amount(dead, units.volume)} out of reach` : "";
+  const time = plant.network.units.time;
+  const through =
+    feed > 0 ? `; feed ${amount(feed, units.flow)}; mean time ${amount(active / feed, time)}` : "; closed";
+  return volume + lost + through;
+}
