@@ -14,7 +14,7 @@ export function closedPeclet(relativeVariance: number): number | undefined {
   return (low + high) / 2;
 }
 
-const panels = 4000;
+const panels = 1000;
 
 /**
  * Danckwerts' holdback, (1/tau) times the integral of F to tau: 0 plug flow, 0.368 well mixed, more with dead water

@@ -1,59 +1,19 @@
-import type { Injection, Reading, Trial } from "../model/trial.js";
-import { dimensions, over, sameDimension } from "../units/dimension.js";
+import type { Reading, Trial } from "../model/trial.js";
+import { dimensions } from "../units/dimension.js";
 import { one, type Unit } from "../units/unit.js";
-import { type CleanCurve, type CleanStep, cleanReading, productUnit } from "./clean.js";
+import { type CleanCurve, cleanReading, productUnit } from "./clean.js";
 import { distributionOf } from "./distribution.js";
-import { type Figure, figure, type Known } from "./figure.js";
+import { type Figure, figure } from "./figure.js";
 import { type Finding, finding } from "./finding.js";
 import { closedPeclet, holdback, segregation } from "./indices.js";
+import { inletMoments } from "./inlet.js";
 import { gradeOf, hopeless, judgeEnds, judgeMean, judgeRecovery } from "./judge.js";
-import { roughness } from "./noise.js";
-import { momentsOf, pulseResponse, type RawMoments, type Response, stepResponse } from "./response.js";
-import type { Tail } from "./tail.js";
-import type { Rule } from "./weights.js";
+import { onlyFlow, recoveryOf, tauOf, whyNoRecovery } from "./recovery.js";
+import { momentsOf, type Response } from "./response.js";
+import { type MomentsOptions, type MomentsResult, nothing, type ReadingMoments } from "./result.js";
+import { seenResponse } from "./seen.js";
 
-/** What is known beside the trial, and how to integrate. What is not given leaves the figures out that need it. */
-export interface MomentsOptions {
-  /** The flow through the place of a reading on the day, m3/s. */
-  readonly flowAt?: (at: string) => Known | undefined;
-  /** Volume of the vessel, m3, and the whole flow through it, m3/s. */
-  readonly volume?: Known | undefined;
-  readonly throughflow?: Known | undefined;
-  readonly rule?: Rule;
-  /** The unit that times are shown in; that of the reading's own where left out. */
-  readonly timeUnit?: Unit;
-}
-
-/** A reading without a model. Times count from the injection. */
-export interface ReadingMoments {
-  readonly at: string;
-  readonly unit: Unit;
-  readonly timeUnit: Unit;
-  readonly area: Figure;
-  readonly recovery: Figure;
-  readonly mean: Figure;
-  readonly variance: Figure;
-  readonly skewness: Figure;
-  readonly t10: Figure;
-  readonly t50: Figure;
-  readonly t90: Figure;
-  /** morrill, tanks, peclet; with volume and flow: holdback, segregation, t10-over-tau, mean-over-tau; with flow: effective-volume. */
-  readonly indices: Readonly<Record<string, Figure>>;
-  readonly tail: Tail;
-  /** What the extrapolated tail makes of each figure: fractions. */
-  readonly tailShare: { readonly area: number; readonly mean: number; readonly variance: number };
-  readonly noise: { readonly sd: Figure; readonly from: string };
-  readonly steps: readonly CleanStep[];
-  readonly curve: { readonly time: Float64Array; readonly E: Float64Array; readonly F: Float64Array } | undefined;
-}
-
-export interface MomentsResult {
-  readonly readings: readonly ReadingMoments[];
-  readonly grade: "A" | "B" | "C";
-  readonly findings: readonly Finding[];
-  /** What was looked for, or asked, and the data or documents do not give; in words. */
-  readonly notSupported: readonly string[];
-}
+export type { MomentsOptions, MomentsResult, ReadingMoments } from "./result.js";
 
 /** Reads every curve of a trial without a model: moments, percentiles, indices, and what can be said about the data. */
 export function readMoments(trial: Trial, options: MomentsOptions = {}): MomentsResult {
@@ -187,71 +147,6 @@ const liter: Unit = { name: "L", factor: 1e-3, offset: 0, dimension: dimensions.
 
 const shifted = (t: number | undefined, by: number): number | undefined => (t === undefined ? undefined : t - by);
 
-/** The curve to take moments of; for a step also how much of it came through. */
-function seenResponse(
-  { form }: Injection,
-  reading: Reading,
-  curve: CleanCurve,
-  flow: Known | undefined,
-  rule: Rule,
-): { response: Response; recovered: number | undefined } | Finding {
-  if (form.is !== "step") return { response: pulseResponse(curve, rule), recovered: undefined };
-  const n = curve.value.length;
-  const size = Math.max(2, Math.floor((n - curve.before) / 10));
-  const [plateau, earlier] = [meanOf(curve.value, n - size, n), meanOf(curve.value, n - 2 * size, n - size)];
-  const before = curve.before > 0 && !curve.baseline ? meanOf(curve.value, 0, curve.before) : 0;
-  const trusted = reading.scale === "known";
-  const from =
-    trusted && form.from && sameDimension(form.from.dimension, curve.unit.dimension) ? form.from.of([]) : before;
-  const level = form.level.of([]);
-  const isLevel = sameDimension(form.level.dimension, curve.unit.dimension);
-  const isRate = flow && sameDimension(over(form.level.dimension, dimensions.flow), curve.unit.dimension);
-  const to = !trusted ? undefined : isLevel ? level : isRate ? level / flow.value : undefined;
-  const noise = roughness(curve.time, curve.value);
-  const rise = Math.abs(plateau - from);
-  const settled = Math.abs(plateau - earlier) <= Math.max(2 * noise * Math.sqrt(2 / size), 2e-3 * rise);
-  if (!settled && to === undefined) {
-    return finding(
-      "step-level",
-      curve.at,
-      `the last tenth still changes by ${Math.round((1000 * Math.abs(plateau - earlier)) / rise) / 10} % of the step`,
-    );
-  }
-  const response = stepResponse(curve, { from, to: settled || to === undefined ? plateau : to }, rule);
-  return { response, recovered: to === undefined || !settled ? undefined : (plateau - from) / (to - from) };
-}
-
-function meanOf(values: Float64Array, from: number, to: number): number {
-  let sum = 0;
-  for (let i = from; i < to; i++) sum += values[i];
-  return sum / (to - from);
-}
-
-/** Moments of a measured inlet about the injection's own time; area in concentration times s. */
-function inletMoments(injection: Injection, rule: Rule): RawMoments | undefined {
-  if (injection.form.is !== "signal") return undefined;
-  const { time, value } = injection.form.table;
-  const since = time.map((t) => t - injection.start);
-  const sd = new Float64Array(time.length).fill(roughness(since, value));
-  const none = { mean: 0, variance: 0, third: 0 };
-  const curve = { time: since, value, before: 0, noise: { sd, from: "roughness of the curve" as const }, added: none };
-  return momentsOf(pulseResponse({ ...emptyCurve, ...curve }, rule));
-}
-
-const emptyCurve: CleanCurve = {
-  at: "",
-  time: new Float64Array(),
-  value: new Float64Array(),
-  unit: one,
-  timeUnit: one,
-  start: 0,
-  before: 0,
-  noise: { sd: new Float64Array(), from: "declared" },
-  baseline: undefined,
-  added: { mean: 0, variance: 0, third: 0 },
-  steps: [],
-};
-
 /** One standard error of a figure with this gradient by each point: scatter of points, and of the baseline under all. */
 function errorOf(gradient: Float64Array, { sd, time, is }: Response, { baseline }: CleanCurve): number {
   let [points, level, slope] = [0, 0, 0];
@@ -262,73 +157,4 @@ function errorOf(gradient: Float64Array, { sd, time, is }: Response, { baseline 
   }
   if (!baseline || is === "washout") return Math.sqrt(points);
   return Math.sqrt(points + (level * baseline.levelError) ** 2 + (slope * baseline.slopeError) ** 2);
-}
-
-/** Tracer seen over tracer given. */
-function recoveryOf(
-  { form }: Injection,
-  reading: Reading,
-  curve: CleanCurve,
-  found: RawMoments,
-  flow: Known | undefined,
-  recovered: number | undefined,
-  inlet: RawMoments | undefined,
-): Figure {
-  if (form.is === "step") return figure(recovered, one);
-  if (reading.scale === "free") return figure(undefined, one);
-  if (inlet) return figure(found.area / inlet.area, one);
-  if (form.is !== "pulse" || !flow) return figure(undefined, one);
-  const dose = form.amount.of([]);
-  if (!sameDimension(over(form.amount.dimension, dimensions.volume), curve.unit.dimension))
-    return figure(undefined, one);
-  const recovery = (flow.value * found.area) / dose;
-  const relative = Math.hypot((flow.sd ?? 0) / flow.value, (form.amount.sd?.([]) ?? 0) / dose);
-  return figure(recovery, one, relative * recovery);
-}
-
-const whyNoRecovery = (reading: Reading, flow: Known | undefined): string =>
-  reading.scale === "free"
-    ? "`scale: free` trusts the shape only"
-    : flow
-      ? "the level of the step or the unit of the dose does not give it"
-      : "no flow is known";
-
-/** The one flow of a trial that names one only and reads one place: all of it passes there. */
-function onlyFlow(trial: Trial): Known | undefined {
-  const [flow] = [...trial.flows.values()];
-  const places = new Set(trial.readings.map((r) => r.at));
-  if (trial.flows.size !== 1 || places.size !== 1 || flow.uses.length > 0) return undefined;
-  return { value: flow.of([]), sd: flow.sd?.([]) };
-}
-
-function tauOf({ volume, throughflow }: MomentsOptions, flow: Known | undefined): Known | undefined {
-  const through = throughflow ?? flow;
-  if (!volume || !through || !(through.value > 0) || !(volume.value > 0)) return undefined;
-  const relative = Math.hypot((volume.sd ?? 0) / volume.value, (through.sd ?? 0) / through.value);
-  const tau = volume.value / through.value;
-  return { value: tau, sd: relative * tau };
-}
-
-/** A reading of which nothing can be said but why. */
-function nothing(curve: CleanCurve, time: Unit): ReadingMoments {
-  const none = (unit: Unit): Figure => figure(undefined, unit);
-  return {
-    at: curve.at,
-    unit: curve.unit,
-    timeUnit: time,
-    area: none(productUnit(`${curve.unit.name} ${time.name}`, curve.unit, time)),
-    recovery: none(one),
-    mean: none(time),
-    variance: none(productUnit(`${time.name}^2`, time, time)),
-    skewness: none(one),
-    t10: none(time),
-    t50: none(time),
-    t90: none(time),
-    indices: {},
-    tail: { is: "open", level: Number.NaN },
-    tailShare: { area: 0, mean: 0, variance: 0 },
-    noise: { sd: figure(curve.noise.sd[0], curve.unit), from: curve.noise.from },
-    steps: curve.steps,
-    curve: undefined,
-  };
 }

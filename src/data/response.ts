@@ -15,8 +15,13 @@ export interface Response {
   readonly tail: Tail;
 }
 
+/** What a curve needs to be read: a cleaned reading has it, and a measured inlet. */
+export interface Sampled extends Pick<CleanCurve, "time" | "value" | "before"> {
+  readonly noise: { readonly sd: Float64Array };
+}
+
 /** The curve after a pulse. Points before the injection are left out. */
-export function pulseResponse(curve: CleanCurve, rule: Rule): Response {
+export function pulseResponse(curve: Sampled, rule: Rule): Response {
   const time = curve.time.subarray(curve.before);
   const value = curve.value.subarray(curve.before);
   const sd = curve.noise.sd.subarray(curve.before);
@@ -30,7 +35,7 @@ export interface Levels {
 }
 
 /** The curve after a step as 1 - F, from time 0 on (where it is 1). */
-export function stepResponse(curve: CleanCurve, { from, to }: Levels, rule: Rule): Response {
+export function stepResponse(curve: Sampled, { from, to }: Levels, rule: Rule): Response {
   const n = curve.time.length - curve.before;
   const lead = n > 0 && curve.time[curve.before] > 0 ? 1 : 0;
   const time = new Float64Array(n + lead);

@@ -36,7 +36,7 @@ export function readingOf(
   const { document, problems } = trialOf(points, change);
   if (!document) throw new Error(problems.map((p) => `${p.code}: ${p.message}`).join("\n"));
   const result = readMoments(document, options);
-  return { ...result.readings[0], grade: result.grade, codes: result.findings.map((f) => f.code), ...result };
+  return { ...result.readings[0], ...result, codes: result.findings.map((f) => f.code) };
 }
 
 /** Points of a function at equal steps from 0. */

@@ -166,7 +166,7 @@ describe("steps and measured inlets", () => {
     ["down", "{at: feed, step: {from: 1.5 g/L, to: 0.2 g/L}}", (t: number) => 1.5 - 1.3 * F(t)],
     ["a dosing rate", "{at: feed, step: 20 g/min}", (t: number) => 2 * F(t)],
   ])("%s", (_, injection, c) => {
-    const r = readingOf(sampled(c, 30, 3000), { injection });
+    const r = readingOf(sampled(c, 30, 2000), { injection });
     expect(r.mean.value).toBeCloseTo(2 * min, 1);
     expect((r.variance.value ?? 0) / min ** 2).toBeCloseTo(4, 2);
     expect(r.t10.value).toBeCloseTo(-2 * min * Math.log(0.9), 1);
@@ -232,8 +232,8 @@ describe("hopeless data end in a finding, never in a number", () => {
     none(readingOf(sampled((t) => (t === 5 ? 1 : 0), 10, 50)), "few-points");
   });
 
-  test("noise alone, a hundred times over", () => {
-    for (let seed = 1; seed <= 100; seed++) {
+  test("noise alone, fifty times over", () => {
+    for (let seed = 1; seed <= 50; seed++) {
       const { normal } = random(seed);
       none(readingOf(sampled(() => 1 + 0.01 * normal(), 20, 30 + 5 * seed)), "only-noise");
     }
@@ -241,16 +241,16 @@ describe("hopeless data end in a finding, never in a number", () => {
 });
 
 describe("error bars", () => {
-  test("cover the truth as often as they say: mean and variance of 300 noisy curves", () => {
+  test("cover the truth as often as they say: mean and variance of 200 noisy curves", () => {
     const { normal } = random(11);
-    const z = Array.from({ length: 300 }, () => {
+    const z = Array.from({ length: 200 }, () => {
       const noisy = sampled((t) => tanks(3, 2)(t) + 0.005 * normal(), 12, 120);
       const r = readingOf(noisy, { reading: "noise: {floor: 0.005 g/L}" });
       if (r.mean.value === undefined || !("standardError" in r.mean)) return Number.NaN;
       return (r.mean.value - 2 * min) / (r.mean.standardError ?? Number.NaN);
     }).filter((x) => !Number.isNaN(x));
     const spread = Math.sqrt(z.reduce((sum, x) => sum + x * x, 0) / z.length);
-    expect(z.length).toBeGreaterThan(250);
+    expect(z.length).toBeGreaterThan(180);
     expect(spread).toBeGreaterThan(0.85);
     expect(spread).toBeLessThan(1.2);
   });

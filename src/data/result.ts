@@ -1,0 +1,74 @@
+import type { Unit } from "../units/unit.js";
+import { one } from "../units/unit.js";
+import { type CleanCurve, type CleanStep, productUnit } from "./clean.js";
+import { type Figure, figure, type Known } from "./figure.js";
+import type { Finding } from "./finding.js";
+import type { Tail } from "./tail.js";
+import type { Rule } from "./weights.js";
+
+/** What is known beside the trial, and how to integrate. What is not given leaves the figures out that need it. */
+export interface MomentsOptions {
+  /** The flow through the place of a reading on the day, m3/s. */
+  readonly flowAt?: (at: string) => Known | undefined;
+  /** Volume of the vessel, m3, and the whole flow through it, m3/s. */
+  readonly volume?: Known | undefined;
+  readonly throughflow?: Known | undefined;
+  readonly rule?: Rule;
+  /** The unit that times are shown in; that of the reading's own where left out. */
+  readonly timeUnit?: Unit;
+}
+
+/** A reading without a model. Times count from the injection. */
+export interface ReadingMoments {
+  readonly at: string;
+  readonly unit: Unit;
+  readonly timeUnit: Unit;
+  readonly area: Figure;
+  readonly recovery: Figure;
+  readonly mean: Figure;
+  readonly variance: Figure;
+  readonly skewness: Figure;
+  readonly t10: Figure;
+  readonly t50: Figure;
+  readonly t90: Figure;
+  /** morrill, tanks, peclet; with volume and flow: holdback, segregation, t10-over-tau, mean-over-tau; with flow: effective-volume. */
+  readonly indices: Readonly<Record<string, Figure>>;
+  readonly tail: Tail;
+  /** What the extrapolated tail makes of each figure: fractions. */
+  readonly tailShare: { readonly area: number; readonly mean: number; readonly variance: number };
+  readonly noise: { readonly sd: Figure; readonly from: string };
+  readonly steps: readonly CleanStep[];
+  readonly curve: { readonly time: Float64Array; readonly E: Float64Array; readonly F: Float64Array } | undefined;
+}
+
+export interface MomentsResult {
+  readonly readings: readonly ReadingMoments[];
+  readonly grade: "A" | "B" | "C";
+  readonly findings: readonly Finding[];
+  /** What was looked for, or asked, and the data or documents do not give; in words. */
+  readonly notSupported: readonly string[];
+}
+
+/** A reading of which nothing can be said but why. */
+export function nothing(curve: CleanCurve, time: Unit): ReadingMoments {
+  const none = (unit: Unit): Figure => figure(undefined, unit);
+  return {
+    at: curve.at,
+    unit: curve.unit,
+    timeUnit: time,
+    area: none(productUnit(`${curve.unit.name} ${time.name}`, curve.unit, time)),
+    recovery: none(one),
+    mean: none(time),
+    variance: none(productUnit(`${time.name}^2`, time, time)),
+    skewness: none(one),
+    t10: none(time),
+    t50: none(time),
+    t90: none(time),
+    indices: {},
+    tail: { is: "open", level: Number.NaN },
+    tailShare: { area: 0, mean: 0, variance: 0 },
+    noise: { sd: figure(curve.noise.sd[0], curve.unit), from: curve.noise.from },
+    steps: curve.steps,
+    curve: undefined,
+  };
+}
