@@ -1,0 +1,42 @@
+import { Worker } from "node:worker_threads";
+import { type ExitStatus, type Io, onInterrupt, streams, terminal } from "./io.js";
+
+/** What the working thread tells the one that listens. */
+export type Message = { readonly out: string } | { readonly err: string } | { readonly end: ExitStatus };
+
+/** What the working thread is given. `flag[0]` becomes 1 when the user asks to stop. */
+export interface WorkerData extends Pick<Io, "isTerminal" | "colour"> {
+  readonly args: readonly string[];
+  readonly cwd: string;
+  readonly flag: Int32Array;
+}
+
+/**
+ * Runs a command line in a thread of its own. The first interrupt asks it to come to an end and print what it has; a
+ * second one ends it at once.
+ */
+export function runAlone(args: readonly string[], script: URL): Promise<ExitStatus> {
+  const flag = new Int32Array(new SharedArrayBuffer(4));
+  const data: WorkerData = { args, cwd: process.cwd(), flag, ...terminal() };
+  const worker = new Worker(script, { workerData: data });
+  const interrupted = (): void => {
+    if (Atomics.exchange(flag, 0, 1) === 0) streams.err("\nbackmix: stopping; again to end at once\n");
+    else process.exit(130);
+  };
+  const listenNoMore = onInterrupt(interrupted);
+  return new Promise((done) => {
+    let status: ExitStatus = 3;
+    worker.on("message", (m: Message) => {
+      if ("out" in m) streams.out(m.out);
+      else if ("err" in m) streams.err(m.err);
+      else status = m.end;
+    });
+    worker.on("error", (e) => {
+      streams.err(`backmix: this is a fault of backmix, not of your file: ${e.message}\n`);
+    });
+    worker.on("exit", () => {
+      listenNoMore();
+      done(status);
+    });
+  });
+}

@@ -1,0 +1,69 @@
+import { compile } from "../compile/compile.js";
+import type { Plant } from "../compile/plant.js";
+import { parseAny } from "../parse/any.js";
+import { problemJson } from "../problems/json.js";
+import { printProblems } from "../problems/print.js";
+import type { Problem } from "../problems/problem.js";
+import { hasErrors } from "../problems/report.js";
+import type { Context } from "./context.js";
+import { networkJson } from "./json/network.js";
+import { type Outcome, UsageError } from "./outcome.js";
+import { annotation } from "./text/annotation.js";
+import { networkText } from "./text/network.js";
+import { blocks } from "./text/table.js";
+
+export interface CheckOptions {
+  readonly format: "text" | "json" | "github" | "sarif";
+}
+
+/** What one file came to. */
+interface Checked {
+  readonly file: string;
+  readonly kind: string | undefined;
+  readonly problems: readonly Problem[];
+  readonly plant: Plant | undefined;
+}
+
+/** `check FILE…`: every problem of every file; of a sound network its balance. */
+export function check(files: readonly string[], { format }: CheckOptions, { inputs, io }: Context): Outcome {
+  if (format === "sarif") throw new UsageError("'--format sarif' is not in this version of backmix");
+  const checked = files.map((file): Checked => {
+    const text = inputs.text(file);
+    if (typeof text !== "string") return { file, kind: undefined, problems: [text], plant: undefined };
+    const { kind, network, problems } = parseAny(text, { path: file, read: inputs.read });
+    return { file, kind, problems, plant: network && compile(network).plant };
+  });
+  const problems = checked.flatMap((c) => c.problems);
+  const ok = !hasErrors(problems);
+  return {
+    status: ok ? 0 : 1,
+    text:
+      format === "github"
+        ? problems.map(annotation).join("\n")
+        : checked.map((c) => say(c, io.colour.out)).join("\n\n"),
+    json: {
+      ok,
+      files: checked.map((c) => ({
+        file: c.file,
+        ok: !hasErrors(c.problems),
+        kind: c.kind ?? null,
+        problems: c.problems.map(problemJson),
+        ...(c.plant ? { network: networkJson(c.plant) } : {}),
+      })),
+      problems: problems.map(problemJson),
+    },
+  };
+}
+
+function say({ file, kind, problems, plant }: Checked, colour: boolean): string {
+  const errors = problems.filter((p) => p.severity === "error").length;
+  const warnings = problems.length - errors;
+  const counts = [
+    errors > 0 ? counted(errors, "error") : "ok",
+    ...(warnings > 0 ? [counted(warnings, "warning")] : []),
+  ];
+  const head = `${file}: ${kind ? `${kind}, ` : ""}${counts.join(", ")}`;
+  return blocks(head, problems.length > 0 ? printProblems(problems, { colour }) : "", plant && networkText(plant));
+}
+
+const counted = (n: number, word: string): string => `${n} ${word}${n === 1 ? "" : "s"}`;

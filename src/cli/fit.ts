@@ -1,0 +1,82 @@
+import { checkTrial } from "../check/trial.js";
+import { fit } from "../fit/fit.js";
+import type { Fit } from "../fit/result.js";
+import type { Network } from "../model/network.js";
+import { parseNetwork } from "../parse/network.js";
+import { parseTrial } from "../parse/trial.js";
+import { collector } from "../problems/report.js";
+import { nearest } from "../text/nearest.js";
+import { formatNumber } from "../units/format.js";
+import type { Context } from "./context.js";
+import type { ExitStatus } from "./io.js";
+import { fitJson } from "./json/fit.js";
+import { InputError, type Outcome, UsageError } from "./outcome.js";
+import { progressOn } from "./progress.js";
+import { fitText } from "./text/fit.js";
+
+export interface FitOptions {
+  readonly trial: readonly string[];
+  readonly free?: readonly string[];
+  readonly starts?: number;
+  readonly seed: number;
+  readonly strict?: true;
+}
+
+/** `fit NETWORK --trial FILE…`: the parameters of a network from all trials at once. */
+export function fitCommand(file: string, options: FitOptions, { inputs, io }: Context): Outcome {
+  const network = inputs.document(file, parseNetwork);
+  const trials = options.trial.map((path) => inputs.document(path, parseTrial));
+  const { report, problems } = collector();
+  for (const trial of trials) checkTrial(network, trial, report);
+  inputs.accept(problems);
+  if (options.free) requireParameters(network, options.free);
+  const progress = progressOn(io);
+  const outcome = fit(network, trials, {
+    ...(options.free ? { free: options.free } : {}),
+    ...(options.starts === undefined ? {} : { starts: options.starts }),
+    seed: options.seed,
+    cancelled: io.cancelled,
+    progress: ({ start, starts, best, evaluations }) =>
+      progress.say(`fit: start ${start} of ${starts}, best ${formatNumber(best)}, ${evaluations} evaluations`),
+  });
+  progress.done();
+  if (!outcome.fit) throw new InputError(outcome.problems);
+  const status = statusOf(outcome.fit, options.strict === true);
+  return {
+    status,
+    text: fitText(network.title, outcome.fit),
+    json: { ok: status === 0, network: network.title, ...fitJson(outcome.fit, network.units.time) },
+    problems: outcome.problems,
+    notes: notesOf(outcome.fit, status),
+  };
+}
+
+function requireParameters(network: Network, free: readonly string[]): void {
+  const names = network.names.filter((n) => n.role === "parameter").map((n) => n.name);
+  if (free.length === 0) throw new UsageError("--free names no parameter");
+  for (const name of free) {
+    if (names.includes(name)) continue;
+    const near = nearest(name, names);
+    const help = near
+      ? `did you mean '${near}'?`
+      : `there ${names.length > 0 ? `are ${names.join(", ")}` : "are none"}`;
+    throw new UsageError(`--free: '${name}' is no parameter of this network; ${help}`);
+  }
+}
+
+/** A parameter that the data leave open: without a standard error, or part of a combination that they cannot tell. */
+const cannotBeTold = (fit: Fit): boolean =>
+  fit.parameters.some((p) => p.standardError === undefined) ||
+  fit.findings.some((f) => f.code === "cannot-tell" || f.code === "wide-interval");
+
+function statusOf(fit: Fit, strict: boolean): ExitStatus {
+  if (fit.stopped) return 130;
+  if (!fit.converged) return 3;
+  return strict && (fit.parameters.some((p) => p.atBound) || cannotBeTold(fit)) ? 1 : 0;
+}
+
+function notesOf(fit: Fit, status: ExitStatus): string[] {
+  if (fit.stopped) return ["backmix: interrupted; these are the best values found so far"];
+  if (!fit.converged) return ["backmix: the fit did not converge; these are the best values found"];
+  return status === 1 ? ["backmix: --strict: a parameter ended at a bound or cannot be told"] : [];
+}

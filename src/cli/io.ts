@@ -1,0 +1,80 @@
+import { mkdirSync, readFileSync, renameSync, rmSync, statSync, writeFileSync } from "node:fs";
+import { dirname, resolve } from "node:path";
+
+/** 0 done; 1 input wrong; 2 wrong usage; 3 numerics did not converge, or a fault of ours; 130 interrupted. */
+export type ExitStatus = 0 | 1 | 2 | 3 | 130;
+
+/** The world as a command sees it. The only way from the program to files and terminal. */
+export interface Io {
+  /** The content of a file by its path from the current folder, `-` for standard input; undefined where nothing can be read. */
+  read(path: string): Uint8Array | string | undefined;
+  /** True where something is at the path, readable or not. */
+  exists(path: string): boolean;
+  /** Writes a file whole or not at all; makes its folder. */
+  write(path: string, content: string): void;
+  out(text: string): void;
+  err(text: string): void;
+  /** Is standard error a terminal, so that a line of progress makes sense? */
+  readonly isTerminal: boolean;
+  readonly colour: { readonly out: boolean; readonly err: boolean };
+  /** True once the user has asked to stop. */
+  cancelled(): boolean;
+}
+
+/** Files of this machine, relative to `cwd`. */
+export function files(cwd: string): Pick<Io, "read" | "exists" | "write"> {
+  return {
+    read(path) {
+      try {
+        return readFileSync(path === "-" ? 0 : resolve(cwd, path));
+      } catch {
+        return undefined;
+      }
+    },
+    exists(path) {
+      return statSync(resolve(cwd, path), { throwIfNoEntry: false }) !== undefined;
+    },
+    write(path, content) {
+      const target = resolve(cwd, path);
+      mkdirSync(dirname(target), { recursive: true });
+      const draft = `${target}.${process.pid}.tmp`;
+      try {
+        writeFileSync(draft, content);
+        renameSync(draft, target);
+      } catch (e) {
+        rmSync(draft, { force: true });
+        throw e;
+      }
+    },
+  };
+}
+
+/** What the process says of its terminal; colour as NO_COLOR and FORCE_COLOR ask (no-color.org). */
+export function terminal(): Pick<Io, "isTerminal" | "colour"> {
+  const { NO_COLOR, FORCE_COLOR, TERM } = process.env;
+  const wanted = (tty: boolean): boolean => (FORCE_COLOR ? FORCE_COLOR !== "0" : tty && !NO_COLOR && TERM !== "dumb");
+  return {
+    isTerminal: process.stderr.isTTY === true,
+    colour: { out: wanted(process.stdout.isTTY === true), err: wanted(process.stderr.isTTY === true) },
+  };
+}
+
+/** The two output streams of the process. */
+export const streams: Pick<Io, "out" | "err"> = {
+  out: (text) => void process.stdout.write(text),
+  err: (text) => void process.stderr.write(text),
+};
+
+/** Ends the process quietly when whoever reads our output has had enough, as `head` does. */
+export function endWithReader(): void {
+  process.stdout.on("error", (e: NodeJS.ErrnoException) => {
+    if (e.code !== "EPIPE") throw e;
+    process.exit();
+  });
+}
+
+/** Calls back at each interrupt instead of ending the process; returns what undoes it. */
+export function onInterrupt(heard: () => void): () => void {
+  process.on("SIGINT", heard);
+  return () => void process.off("SIGINT", heard);
+}

@@ -1,0 +1,62 @@
+import type { Estimate, Fit, FittedParameter, Nuisance } from "../../fit/result.js";
+import { differenceInUnit, type Unit } from "../../units/unit.js";
+import { finite, quantity, series, unitName } from "./quantity.js";
+
+/** What a fit found, every number in the unit that people see. */
+export function fitJson(fit: Fit, time: Unit): Record<string, unknown> {
+  return {
+    parameters: Object.fromEntries(fit.parameters.map((p) => [p.name, parameterJson(p)])),
+    nuisance: Object.fromEntries(Object.entries(fit.nuisance).map(([key, terms]) => [key, nuisanceJson(terms)])),
+    residualSumOfSquares: finite(fit.residualSumOfSquares),
+    residualUnit: fit.residualUnit ? unitName(fit.residualUnit) : "standard deviation",
+    observations: fit.observations,
+    freeParameters: fit.freeParameters,
+    aicc: finite(fit.aicc),
+    bic: finite(fit.bic),
+    correlation: { names: fit.correlation.names, rows: fit.correlation.rows.map((row) => row.map(finite)) },
+    converged: fit.converged,
+    ...(fit.stopped ? { stopped: fit.stopped } : {}),
+    evaluations: fit.evaluations,
+    optima: fit.optima.map((o) => ({
+      parameters: Object.fromEntries(fit.parameters.map((p) => [p.name, quantity(o.values[p.name], p.unit)])),
+      residualSumOfSquares: finite(o.residualSumOfSquares),
+      starts: o.starts,
+    })),
+    readings: fit.readings.map((r) => ({
+      trial: r.trial,
+      at: r.at,
+      key: r.key,
+      time: series(r.time, time),
+      measured: series(r.measured, r.unit),
+      fitted: series(r.fitted, r.unit),
+      residual: { unit: unitName(r.unit), values: Array.from(r.residual, (v) => finite(differenceInUnit(v, r.unit))) },
+    })),
+    held: fit.held,
+    findings: fit.findings,
+  };
+}
+
+export function parameterJson(p: FittedParameter): object {
+  const spread = (si: number): number | null => finite(differenceInUnit(si, p.unit));
+  const ends = p.interval95?.map((v) => quantity(v, p.unit).value);
+  return {
+    ...quantity(p.value, p.unit),
+    standardError: p.standardError === undefined ? null : spread(p.standardError),
+    ...(p.standardErrorCorrelated === undefined ? {} : { standardErrorCorrelated: spread(p.standardErrorCorrelated) }),
+    interval95: ends ?? null,
+    ...(p.standardError === undefined || ends === undefined ? { why: "not-estimable" } : {}),
+    atBound: p.atBound ?? null,
+  };
+}
+
+const nuisanceJson = ({ offset, drift, scale }: Nuisance): object => ({
+  ...(offset ? { offset: estimateJson(offset) } : {}),
+  ...(drift ? { drift: estimateJson(drift) } : {}),
+  ...(scale ? { scale: estimateJson(scale) } : {}),
+});
+
+const estimateJson = ({ value, unit, standardError }: Estimate): object => ({
+  ...quantity(value, unit),
+  standardError: standardError === undefined ? null : finite(differenceInUnit(standardError, unit)),
+  ...(standardError === undefined ? { why: "not-estimable" } : {}),
+});

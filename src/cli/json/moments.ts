@@ -1,0 +1,62 @@
+import type { CleanStep } from "../../data/clean.js";
+import { productUnit } from "../../data/clean.js";
+import type { MomentsResult, ReadingMoments } from "../../data/moments.js";
+import type { Unit } from "../../units/unit.js";
+import { perUnit, squared } from "../units.js";
+import { figureJson } from "./figure.js";
+import { finite, quantity, series } from "./quantity.js";
+
+/** What `moments` found. */
+export function momentsResultJson({ readings, grade, findings, notSupported }: MomentsResult): Record<string, unknown> {
+  return { readings: readings.map(readingJson), grade, findings, notSupported };
+}
+
+function readingJson(r: ReadingMoments): object {
+  const time = r.timeUnit;
+  return {
+    at: r.at,
+    area: figureJson(r.area),
+    recovery: figureJson(r.recovery),
+    mean: figureJson(r.mean),
+    variance: figureJson(r.variance),
+    skewness: figureJson(r.skewness),
+    t10: figureJson(r.t10),
+    t50: figureJson(r.t50),
+    t90: figureJson(r.t90),
+    indices: Object.fromEntries(Object.entries(r.indices).map(([name, f]) => [camel(name), figureJson(f)])),
+    tail: tailJson(r),
+    noise: { sd: figureJson(r.noise.sd), from: r.noise.from },
+    steps: r.steps.map((s) => stepJson(s, time)),
+    curve: r.curve
+      ? { time: series(r.curve.time, time), E: series(r.curve.E, perUnit(time)), F: series(r.curve.F, one) }
+      : null,
+  };
+}
+
+const one: Unit = { name: "", factor: 1, offset: 0, dimension: [0, 0, 0, 0, 0, 0, 0] };
+
+function tailJson({ tail, tailShare, timeUnit, unit }: ReadingMoments): object {
+  const share = { area: finite(tailShare.area), mean: finite(tailShare.mean), variance: finite(tailShare.variance) };
+  if (tail.is !== "exponential") return { is: tail.is, share };
+  return {
+    is: tail.is,
+    from: quantity(tail.from, timeUnit),
+    end: quantity(tail.end, timeUnit),
+    level: quantity(tail.level, unit),
+    rate: quantity(tail.rate, perUnit(timeUnit)),
+    points: tail.points,
+    share,
+  };
+}
+
+function stepJson({ name, unit, area, mean, variance, t10 }: CleanStep, time: Unit): object {
+  return {
+    name,
+    area: quantity(area, productUnit(`${unit.name} ${time.name}`, unit, time)),
+    mean: quantity(mean, time),
+    variance: quantity(variance, squared(time)),
+    t10: quantity(t10, time),
+  };
+}
+
+const camel = (name: string): string => name.replace(/-(\w)/g, (_, letter: string) => letter.toUpperCase());

@@ -1,0 +1,44 @@
+import type { Balance } from "../../simulate/respond.js";
+import type { TracerReading, TracerResult } from "../../simulate/tracer.js";
+import type { Unit } from "../../units/unit.js";
+import type { Clock } from "../times.js";
+import { perUnit, pureNumber, squared } from "../units.js";
+import { finite, pure, quantity, series } from "./quantity.js";
+
+/** What `simulate --pulse` and `--step` found. */
+export function tracerJson(result: TracerResult, clock: Clock, form: "pulse" | "step"): Record<string, unknown> {
+  const { unit } = clock;
+  const valueUnit = form === "pulse" ? perUnit(unit) : pureNumber;
+  return {
+    engine: result.engine,
+    readings: result.readings.map((r) => ({
+      at: r.at,
+      time: { unit: unit.name, values: clock.shown },
+      value: series(r.value, valueUnit),
+      cumulative: series(r.cumulative, pureNumber),
+      spikes: r.spikes.map((s) => ({ time: quantity(s.time, unit), area: s.area })),
+      spikesLeftOut: r.spikesLeftOut,
+    })),
+    moments: result.readings.map((r) => momentsJson(r, unit)),
+    balance: balanceJson(result.balance, pureNumber),
+  };
+}
+
+/** Moments of residence time at one place. */
+export function momentsJson({ at, area, moments }: Pick<TracerReading, "at" | "area" | "moments">, unit: Unit): object {
+  const { share, mean, variance, skewness } = moments;
+  return {
+    at,
+    area,
+    share,
+    mean: quantity(mean, unit),
+    variance: quantity(variance, squared(unit)),
+    ...(skewness === undefined ? { skewness: null, why: "undefined" } : { skewness: finite(skewness) }),
+  };
+}
+
+/** Where all tracer is at the end of the run. */
+export const balanceJson = ({ injected, left, inside, recovered, closure }: Balance, unit: Unit): object => {
+  const of = (amount: number): object => (unit.name === "" ? pure(amount) : quantity(amount, unit));
+  return { injected: of(injected), left: of(left), inside: of(inside), recovered: of(recovered), closure };
+};

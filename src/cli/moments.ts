@@ -1,0 +1,51 @@
+import { checkTrial } from "../check/trial.js";
+import { readMoments } from "../data/moments.js";
+import type { Network } from "../model/network.js";
+import type { Trial } from "../model/trial.js";
+import { parseNetwork } from "../parse/network.js";
+import { parseTrial } from "../parse/trial.js";
+import { collector } from "../problems/report.js";
+import { beside } from "../read/paths.js";
+import type { Context } from "./context.js";
+import type { Inputs } from "./inputs.js";
+import { momentsResultJson } from "./json/moments.js";
+import { flowThrough, knownOnDay } from "./known.js";
+import type { Outcome } from "./outcome.js";
+import { momentsText } from "./text/moments.js";
+import { vesselOf } from "./vessel.js";
+
+export interface MomentsOptions {
+  readonly vessel?: string;
+}
+
+/** `moments TRIAL`: the data alone; flow and volume come from the vessel where one is named. */
+export function moments(file: string, { vessel }: MomentsOptions, { inputs }: Context): Outcome {
+  const trial = inputs.document(file, parseTrial);
+  const network = vesselFor(trial, file, vessel, inputs);
+  const result = readMoments(
+    trial,
+    network
+      ? {
+          flowAt: (at) => knownOnDay(network, trial, (plant) => flowThrough(plant, at)),
+          volume: knownOnDay(network, trial, (plant) => plant.volume.total),
+          throughflow: knownOnDay(network, trial, (plant) => vesselOf(plant).feed),
+          timeUnit: network.units.time,
+        }
+      : {},
+  );
+  return {
+    status: 0,
+    text: momentsText(trial.title, result),
+    json: { ok: true, trial: trial.title, ...momentsResultJson(result) },
+  };
+}
+
+function vesselFor(trial: Trial, file: string, named: string | undefined, inputs: Inputs): Network | undefined {
+  const path = named ?? (trial.vessel === undefined ? undefined : beside(file, trial.vessel));
+  if (path === undefined) return undefined;
+  const network = inputs.document(path, parseNetwork);
+  const { report, problems } = collector();
+  checkTrial(network, trial, report);
+  inputs.accept(problems);
+  return network;
+}

@@ -1,0 +1,194 @@
+import { Command, InvalidArgumentError, Option } from "commander";
+import type { Inputs } from "./inputs.js";
+import type { Io } from "./io.js";
+import { type Outcome, UsageError } from "./outcome.js";
+import { version } from "./version.js";
+
+/** What the command line needs of its surroundings. */
+export interface Stage {
+  readonly io: Io;
+  readonly inputs: Inputs;
+  /** Runs the work of a command under its name. */
+  perform(name: string, work: () => Outcome | Promise<Outcome>): Promise<void>;
+  /** Takes help texts and the version. */
+  write(text: string): void;
+  readonly width: number;
+}
+
+/** Commands of the language's contract that this version does not have. */
+const laterCommands = "equations, sweep, plan, verify, tidy, diff, watch, language-server".split(", ");
+
+/** Every command with its arguments and options. The work itself is loaded when it is asked for. */
+export function program(stage: Stage): Command {
+  const root = new Command("backmix")
+    .description(
+      "From a tracer test to a decision: fit compartment networks to residence-time data\nand predict what the vessel makes.",
+    )
+    .version(version, "--version", "print the version")
+    .helpOption("-h, --help", "print this help")
+    .helpCommand(false)
+    .exitOverride()
+    .configureOutput({
+      writeOut: stage.write,
+      writeErr: stage.write,
+      outputError: () => {},
+      getOutHelpWidth: () => stage.width,
+    });
+  addCheck(root, stage);
+  addDraw(root, stage);
+  addSimulate(root, stage);
+  addMoments(root, stage);
+  addFit(root, stage);
+  addStudy(root, stage);
+  for (const name of laterCommands) addLater(root, name);
+  root.addHelpText(
+    "after",
+    `\nEvery command reads files, or - for standard input, and takes --json.\nNot in this version: ${laterCommands.join(", ")}.\n\nStart here:\n  backmix study networks/demo/study.yaml`,
+  );
+  return root;
+}
+
+function addCheck(root: Command, { perform, inputs, io }: Stage): void {
+  command(root, "check <files...>", "look a document over; of a network print flows, volumes and space times", [
+    "check networks/demo/bypass.yaml",
+  ])
+    .addOption(
+      new Option("--format <form>", "how to print").choices(["text", "json", "github", "sarif"]).default("text"),
+    )
+    .action((files: string[], options) =>
+      perform("check", async () => (await import("./check.js")).check(files, options, { inputs, io })),
+    );
+}
+
+function addDraw(root: Command, { perform, inputs, io }: Stage): void {
+  command(root, "draw <network>", "the flow diagram: bodies sized by volume, streams by flow", [
+    "draw networks/demo/bypass.yaml -o bypass.svg",
+  ])
+    .option("-o, --output <file>", "write to F.svg or F.html; else the SVG goes to standard output")
+    .option("--set <name=value>", "another value of a parameter, constant or feed.flow; repeatable", collect)
+    .action((network: string, options) =>
+      perform("draw", async () => (await import("./draw.js")).draw(network, options, { inputs, io })),
+    );
+}
+
+function addSimulate(root: Command, { perform, inputs, io }: Stage): void {
+  const simulate = command(root, "simulate <network>", "what a network does with tracer, or makes of its feeds", [
+    "simulate networks/demo/bypass.yaml --pulse feed",
+    'simulate networks/demo/bypass.yaml --step feed --until "6 h" -o step.csv',
+    "simulate networks/demo/bypass.yaml --duty networks/demo/normal.yaml",
+  ])
+    .option("--pulse <feed>", "a unit pulse into a feed or compartment")
+    .option("--step <feed>", "a unit step in a feed or compartment")
+    .option("--trial <file>", "what the probes of a trial would read")
+    .option("--duty <file>", "the steady state of a duty, with its report")
+    .option("--at <names>", "inner places to look at besides the outlets; repeatable", collectNames)
+    .option("--set <name=value>", "another value of a parameter, constant or feed.flow; repeatable", collect)
+    .option("--until <time>", 'end of the curve, such as "6 h"')
+    .option("--points <n>", "points from 0 to the end", whole(2), undefined)
+    .option("--times <list>", 'the times themselves, such as "0.5, 1, 2.5 min"')
+    .addOption(
+      new Option("--engine <name>", "how to integrate").choices(["auto", "exact", "ode", "laplace"]).default("auto"),
+    )
+    .option("--verify", "run both engines and print the largest difference")
+    .option("-o, --output <file>", "write the curves to F.csv");
+  later(simulate, "--transient").action((network: string, options, self: Command) =>
+    perform("simulate", async () => {
+      refuseLater(self);
+      return (await import("./simulate.js")).simulate(network, options, { inputs, io });
+    }),
+  );
+}
+
+function addMoments(root: Command, { perform, inputs, io }: Stage): void {
+  command(root, "moments <trial>", "what the data say by themselves, without a model", [
+    "moments networks/demo/salt-pulse.yaml",
+  ])
+    .option("--vessel <network>", "the network that gives flows and volume, before the trial's own `vessel:`")
+    .action((trial: string, options) =>
+      perform("moments", async () => (await import("./moments.js")).moments(trial, options, { inputs, io })),
+    );
+}
+
+function addFit(root: Command, { perform, inputs, io }: Stage): void {
+  const fit = command(root, "fit <network>", "estimate the parameters of a network from trials", [
+    "fit networks/demo/bypass.yaml --trial networks/demo/salt-pulse.yaml",
+  ])
+    .requiredOption("--trial <files...>", "the trials, all fitted at once; repeatable")
+    .option("--free <names>", "parameters to estimate, by commas (default: all)", collectNames)
+    .option("--starts <n>", "starts besides the file's own values", whole(0))
+    .option("--seed <n>", "seed of the starts", whole(0), 1)
+    .option("--strict", "exit 1 when a parameter ends at a bound or cannot be told");
+  later(fit, "--profile", "--bootstrap <n>", "--resume <file>", "--write").action(
+    (network: string, options, self: Command) =>
+      perform("fit", async () => {
+        refuseLater(self);
+        return (await import("./fit.js")).fitCommand(network, options, { inputs, io });
+      }),
+  );
+}
+
+function addStudy(root: Command, { perform, inputs, io }: Stage): void {
+  command(root, "study <file>", "the whole job: rivals ranked, duties predicted, changes compared, one report", [
+    "study networks/demo/study.yaml -o report",
+  ])
+    .option("-o, --output <folder>", "where the report goes, before the study's own `out:`")
+    .option("--starts <n>", "starts of each fit besides the file's own values", whole(0))
+    .action((file: string, options) =>
+      perform("study", async () => (await import("./study.js")).study(file, options, { inputs, io })),
+    );
+}
+
+function command(root: Command, usage: string, says: string, examples: readonly string[]): Command {
+  const lines = examples.map((e) => `  backmix ${e}`).join("\n");
+  return root
+    .command(usage)
+    .description(says)
+    .option("--json", "print one JSON document")
+    .addHelpText("after", `\nExample${examples.length > 1 ? "s" : ""}:\n${lines}`);
+}
+
+function addLater(root: Command, name: string): void {
+  root
+    .command(name, { hidden: true })
+    .helpOption(false)
+    .allowUnknownOption()
+    .allowExcessArguments()
+    .action(() => {
+      throw new UsageError(`'${name}' is not in this version of backmix`);
+    });
+}
+
+/** Options of the contract that this version does not honour: known, so that they are refused in plain words. */
+const laterOptions = new WeakMap<Command, readonly Option[]>();
+
+function later(to: Command, ...flags: readonly string[]): Command {
+  const options = flags.map((f) => new Option(f, "not in this version").hideHelp());
+  for (const option of options) to.addOption(option);
+  laterOptions.set(to, options);
+  return to;
+}
+
+function refuseLater(of: Command): void {
+  const given = laterOptions.get(of)?.find((o) => of.getOptionValueSource(o.attributeName()) === "cli");
+  if (given) throw new UsageError(`'${given.long}' is not in this version of backmix`);
+}
+
+const collect = (value: string, before: readonly string[] | undefined): string[] => [...(before ?? []), value];
+
+const collectNames = (value: string, before: readonly string[] | undefined): string[] => [
+  ...(before ?? []),
+  ...value
+    .split(",")
+    .map((n) => n.trim())
+    .filter((n) => n !== ""),
+];
+
+const whole =
+  (least: number) =>
+  (text: string): number => {
+    const n = Number(text);
+    if (!/^\d+$/.test(text) || !Number.isSafeInteger(n) || n < least) {
+      throw new InvalidArgumentError(`write a whole number, ${least} or more.`);
+    }
+    return n;
+  };

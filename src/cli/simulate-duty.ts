@@ -1,0 +1,3 @@
+export function simulateDuty(): never {
+  throw new Error("x");
+}

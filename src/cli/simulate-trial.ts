@@ -1,0 +1,116 @@
+import { checkTrial } from "../check/trial.js";
+import type { Plant } from "../compile/plant.js";
+import { settingsOfDay } from "../fit/settings.js";
+import type { Network } from "../model/network.js";
+import type { Trial } from "../model/trial.js";
+import { parseTrial } from "../parse/trial.js";
+import { collector } from "../problems/report.js";
+import { moments } from "../simulate/moments.js";
+import { settlingTime } from "../simulate/tracer.js";
+import { trialResponse } from "../simulate/trial.js";
+import { formatNumber, formatQuantity } from "../units/format.js";
+import { inUnit } from "../units/unit.js";
+import type { Context } from "./context.js";
+import { curvesCsv } from "./csv.js";
+import { engineNamed, engines, largestDifference } from "./engines.js";
+import { pure, series } from "./json/quantity.js";
+import { balanceJson, momentsJson } from "./json/tracer.js";
+import { type Outcome, UsageError } from "./outcome.js";
+import { settingsFrom } from "./settings.js";
+import type { SimulateOptions } from "./simulate.js";
+import { blocks, table } from "./text/table.js";
+import { balanceLine, momentsTable } from "./text/tracer.js";
+import { type Clock, clockFrom } from "./times.js";
+import { trialBalance } from "./trial-balance.js";
+
+/** `simulate --trial`: what every probe of a trial would read. Times count from the first injection. */
+export function simulateTrial(network: Network, options: SimulateOptions, { inputs, io }: Context): Outcome {
+  if (options.at) throw new UsageError("--at is for --pulse and --step; a trial says itself where it reads");
+  const trial = inputs.document(options.trial ?? "", parseTrial);
+  const { report, problems } = collector();
+  checkTrial(network, trial, report);
+  inputs.accept(problems);
+  const plant = inputs.plant(network, settingsOfDay(network, trial, settingsFrom(network, options.set)));
+  const origin = Math.min(...trial.injections.map((i) => i.start));
+  const clock = clockFrom(options, network.units.time, () => lastTime(plant, trial, origin));
+  const wanted = trial.readings.map(() => ({ time: clock.si.map((t) => t + origin) }));
+  const engine = engineNamed(options.engine);
+  const curves = trialResponse(plant, trial, wanted, engine);
+  const other = options.verify
+    ? trialResponse(plant, trial, wanted, engines.find((e) => e !== engine) ?? engines[1])
+    : undefined;
+  const difference = other && largestDifference(curves, other);
+  const balance = trialBalance(plant, trial, origin + clock.si[clock.si.length - 1], engine);
+  const places = placesOf(plant, trial);
+  if (options.output !== undefined) {
+    const unit = trial.readings[0]?.unit.name || "1";
+    if (trial.readings.some((r) => (r.unit.name || "1") !== unit)) {
+      throw new UsageError("-o needs all readings of the trial in one unit; use --json");
+    }
+    const rows = trial.readings.map((r, i) => {
+      const value = curves[i].map((v) => inUnit(v, r.unit));
+      return { at: r.at, time: clock.shown, value, spikes: [] };
+    });
+    io.write(options.output, curvesCsv(rows, { time: clock.unit.name, value: unit, spike: unit }));
+  }
+  const failed = curves.some((c) => c.some(Number.isNaN));
+  return {
+    status: failed ? 3 : 0,
+    text: blocks(
+      `${network.title}: ${trial.title}, ${clock.shown.length} times to ${formatNumber(clock.shown[clock.shown.length - 1])} ${clock.unit.name} after the injection (${engine.name})`,
+      readingsTable(trial, curves, clock),
+      `  residence time from ${trial.injections[0].at}\n${momentsTable(places, clock.unit)}`,
+      balance ? balanceLine(balance.balance, balance.unit) : "",
+      difference === undefined ? "" : `  engines: they differ by at most ${formatNumber(difference, 2)} of the peak`,
+      options.output === undefined ? "" : `  curves: ${options.output}`,
+    ),
+    json: {
+      ok: !failed,
+      engine: engine.name,
+      trial: trial.title,
+      readings: trial.readings.map((r, i) => ({
+        at: r.at,
+        time: { unit: clock.unit.name, values: clock.shown },
+        value: series(curves[i], r.unit),
+      })),
+      moments: places.map((p) => momentsJson(p, clock.unit)),
+      balance: balance ? balanceJson(balance.balance, balance.unit) : null,
+      ...(difference === undefined
+        ? {}
+        : { verify: { engines: engines.map((e) => e.name), largestDifference: pure(difference).value } }),
+      ...(options.output === undefined ? {} : { written: options.output }),
+    },
+    notes: failed ? ["not converged: the integrator gave up; points without a value are left empty"] : [],
+  };
+}
+
+/** The end of the data where there are any, else when the curve is over. s after the first injection. */
+function lastTime(plant: Plant, trial: Trial, origin: number): number {
+  const ends = trial.readings.map((r) => r.series?.time.reduce((m, t) => Math.max(m, t), 0) ?? 0);
+  const end = Math.max(0, ...ends) - origin;
+  return end > 0
+    ? end
+    : Math.max(...trial.injections.map((i) => i.start - origin + i.lasting + settlingTime(plant, i.at)));
+}
+
+/** Residence time from the first injection to every place that the trial reads. */
+function placesOf(plant: Plant, trial: Trial) {
+  const all = moments(plant, plant.entry.get(trial.injections[0].at) as number);
+  return [...new Set(trial.readings.map((r) => r.at))].map((at) => {
+    const node = plant.exit.get(at) as number;
+    const { inflow } = plant.nodes[node];
+    const flow =
+      plant.feeds.find((f) => f.name === trial.injections[0].at)?.flow ?? plant.feeds.reduce((s, f) => s + f.flow, 0);
+    return { at, moments: all[node], area: inflow > 0 ? (all[node].share * flow) / inflow : 0 };
+  });
+}
+
+function readingsTable(trial: Trial, curves: readonly Float64Array[], clock: Clock): string {
+  return table(
+    [{ title: "reading" }, { title: "largest", align: "right" }, { title: `at, ${clock.unit.name}`, align: "right" }],
+    trial.readings.map((r, i) => {
+      const top = curves[i].reduce((best, v, k) => (v > curves[i][best] ? k : best), 0);
+      return [r.at, formatQuantity(curves[i][top], r.unit), formatNumber(clock.shown[top])];
+    }),
+  );
+}

@@ -1,0 +1,96 @@
+import type { Network } from "../model/network.js";
+import { settlingTime, tracerResponse } from "../simulate/tracer.js";
+import { formatNumber, formatQuantity } from "../units/format.js";
+import { inUnit } from "../units/unit.js";
+import type { Context } from "./context.js";
+import { curvesCsv } from "./csv.js";
+import { engineNamed, engines, largestDifference } from "./engines.js";
+import { pure } from "./json/quantity.js";
+import { tracerJson } from "./json/tracer.js";
+import type { Outcome } from "./outcome.js";
+import { requirePlace, settingsFrom } from "./settings.js";
+import type { SimulateOptions } from "./simulate.js";
+import { blocks } from "./text/table.js";
+import { balanceLine, momentsTable, spikesText } from "./text/tracer.js";
+import { clockFrom } from "./times.js";
+import { perUnit, pureNumber } from "./units.js";
+
+/** `simulate --pulse` and `--step`: a unit of tracer. */
+export function simulateUnit(network: Network, options: SimulateOptions, { inputs, io }: Context): Outcome {
+  const form = options.pulse === undefined ? "step" : "pulse";
+  const into = options.pulse ?? options.step ?? "";
+  const plant = inputs.plant(network, settingsFrom(network, options.set));
+  requirePlace(into, plant.entry, `--${form}`);
+  for (const name of options.at ?? []) requirePlace(name, plant.exit, "--at");
+  const clock = clockFrom(options, network.units.time, () => settlingTime(plant, into));
+  const at = options.at ?? [];
+  const run = (engine: ReturnType<typeof engineNamed>) =>
+    tracerResponse(plant, { at: into, form }, clock.si, { engine, at });
+  const result = run(engineNamed(options.engine));
+  const other = options.verify ? run(engines.find((e) => e.name !== result.engine) ?? engines[1]) : undefined;
+  const difference = other && largestDifference(...curvesOf(result, other));
+  const valueUnit = form === "pulse" ? perUnit(clock.unit) : pureNumber;
+  if (options.output !== undefined) {
+    const curves = result.readings.map((r) => ({
+      at: r.at,
+      time: clock.shown,
+      value: r.value.map((v) => inUnit(v, valueUnit)),
+      cumulative: r.cumulative,
+      spikes: r.spikes.map((s) => ({ time: inUnit(s.time, clock.unit), area: s.area })),
+    }));
+    io.write(options.output, curvesCsv(curves, { time: clock.unit.name, value: valueUnit.name || "1", spike: "1" }));
+  }
+  const notes = [
+    ...(result.stopped ? [`not converged: ${result.stopped}; what was found before is printed`] : []),
+    ...(result.truncated ? ["tracer passes through tubes were cut off where they add nothing that counts"] : []),
+  ];
+  const last = clock.shown[clock.shown.length - 1];
+  return {
+    status: result.stopped || other?.stopped ? 3 : 0,
+    text: blocks(
+      `${network.title}: a unit ${form} into ${into}, ${clock.shown.length} times to ${formatNumber(last)} ${clock.unit.name} (${result.engine})`,
+      momentsTable(result.readings, clock.unit),
+      spikesText(result.readings, clock.unit),
+      balanceLine(result.balance, pureNumber),
+      peaks(result.readings, clock.shown, valueUnit.factor, valueUnit.name, clock.unit.name),
+      difference === undefined
+        ? ""
+        : `  engines: ${engines.map((e) => e.name).join(" and ")} differ by at most ${formatNumber(difference, 2)} of the peak`,
+      options.output === undefined ? "" : `  curves: ${options.output}`,
+    ),
+    json: {
+      ok: !result.stopped,
+      ...tracerJson(result, clock, form),
+      ...(difference === undefined
+        ? {}
+        : { verify: { engines: engines.map((e) => e.name), largestDifference: pure(difference).value } }),
+      ...(result.stopped ? { stopped: result.stopped } : {}),
+      ...(options.output === undefined ? {} : { written: options.output }),
+    },
+    notes,
+  };
+}
+
+type Result = ReturnType<typeof tracerResponse>;
+
+const curvesOf = (a: Result, b: Result): [Float64Array[], Float64Array[]] => [
+  a.readings.map((r) => r.value),
+  b.readings.map((r) => r.value),
+];
+
+/** The largest value of each curve and when. */
+function peaks(
+  readings: Result["readings"],
+  times: readonly number[],
+  factor: number,
+  unit: string,
+  timeUnit: string,
+): string {
+  return readings
+    .flatMap((r) => {
+      const i = r.value.reduce((best, v, k) => (v > r.value[best] ? k : best), 0);
+      const value = formatQuantity(r.value[i], { ...pureNumber, name: unit, factor });
+      return r.value[i] > 0 ? [`  largest at ${r.at}: ${value} at ${formatNumber(times[i])} ${timeUnit}`] : [];
+    })
+    .join("\n");
+}

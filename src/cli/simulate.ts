@@ -1,0 +1,43 @@
+import { parseNetwork } from "../parse/network.js";
+import type { Context } from "./context.js";
+import { type Outcome, UsageError } from "./outcome.js";
+import type { TimeOptions } from "./times.js";
+
+export interface SimulateOptions extends TimeOptions {
+  readonly pulse?: string;
+  readonly step?: string;
+  readonly trial?: string;
+  readonly duty?: string;
+  readonly at?: readonly string[];
+  readonly set?: readonly string[];
+  readonly engine: "auto" | "exact" | "ode" | "laplace";
+  readonly verify?: true;
+  readonly output?: string;
+}
+
+/** `simulate NETWORK`: tracer after a pulse, a step or as in a trial; or the steady state of a duty. */
+export async function simulate(file: string, options: SimulateOptions, context: Context): Promise<Outcome> {
+  const asked = (["pulse", "step", "trial", "duty"] as const).filter((key) => options[key] !== undefined);
+  if (asked.length !== 1) {
+    throw new UsageError("say what to simulate: one of --pulse FEED, --step FEED, --trial FILE and --duty FILE");
+  }
+  if (options.engine === "laplace") throw new UsageError("'--engine laplace' is not in this version of backmix");
+  if (options.output !== undefined && !/\.csv$/i.test(options.output)) {
+    throw new UsageError(`-o writes the curves as CSV: name a file that ends in .csv, not '${options.output}'`);
+  }
+  if (asked[0] === "duty") {
+    for (const key of ["until", "points", "times", "verify", "output"] as const) {
+      if (options[key] !== undefined) throw new UsageError(`--${key} says nothing about the steady state of a duty`);
+    }
+    if (options.engine !== "auto") throw new UsageError("--engine is for tracer; a duty has one way to be solved");
+  }
+  const network = context.inputs.document(file, parseNetwork);
+  switch (asked[0]) {
+    case "duty":
+      return (await import("./simulate-duty.js")).simulateDuty(network, options, context);
+    case "trial":
+      return (await import("./simulate-trial.js")).simulateTrial(network, options, context);
+    default:
+      return (await import("./simulate-unit.js")).simulateUnit(network, options, context);
+  }
+}

@@ -1,0 +1,3 @@
+export function study(): never {
+  throw new Error("x");
+}

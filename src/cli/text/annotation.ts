@@ -1,0 +1,14 @@
+import { problemJson } from "../../problems/json.js";
+import type { Problem } from "../../problems/problem.js";
+
+/** A problem as a workflow command of GitHub Actions, which shows it beside the line of a pull request. */
+export function annotation(problem: Problem): string {
+  const { severity, file, line, column, endLine, endColumn, code, message, fix } = problemJson(problem);
+  const where = [`file=${property(file)}`, `line=${line}`, `endLine=${endLine}`];
+  const columns = line === endLine ? [`col=${column}`, `endColumn=${endColumn}`] : [];
+  return `::${severity} ${[...where, ...columns, `title=${property(code)}`].join(",")}::${data(`${message}; fix: ${fix}`)}`;
+}
+
+const data = (text: string): string => text.replace(/%/g, "%25").replace(/\r/g, "%0D").replace(/\n/g, "%0A");
+
+const property = (text: string): string => data(text).replace(/:/g, "%3A").replace(/,/g, "%2C");

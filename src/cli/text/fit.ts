@@ -1,0 +1,90 @@
+import type { Estimate, Fit, FitFinding } from "../../fit/result.js";
+import { formatNumber } from "../../units/format.js";
+import { inUnit } from "../../units/unit.js";
+import { digitsFor, errorText, supported } from "./digits.js";
+import { blocks, table } from "./table.js";
+
+/** What a fit found, for people. */
+export function fitText(title: string, fit: Fit): string {
+  const { observations, freeParameters, evaluations } = fit;
+  const marked = fit.converged ? "" : fit.stopped ? " (interrupted: best so far)" : " (not converged: best found)";
+  const unit = fit.residualUnit ? ` (${fit.residualUnit.name || "bare"})^2` : "";
+  return blocks(
+    `${title}${marked}`,
+    parametersTable(fit),
+    nuisanceTable(fit),
+    correlationTable(fit),
+    [
+      `  residual sum of squares ${formatNumber(fit.residualSumOfSquares, 6)}${unit} over ${observations} points, ${freeParameters} unknowns`,
+      `  AICc ${formatNumber(fit.aicc, 6)}, BIC ${formatNumber(fit.bic, 6)}, ${evaluations} evaluations`,
+    ].join("\n"),
+    heldTable(fit),
+    fit.findings.map(findingText).join("\n"),
+  );
+}
+
+const right = (title: string) => ({ title, align: "right" as const });
+
+function parametersTable(fit: Fit): string {
+  return table(
+    [
+      { title: "parameter" },
+      right("value"),
+      right("standard error"),
+      right("95 % interval"),
+      { title: "unit" },
+      { title: "" },
+    ],
+    fit.parameters.map((p) => {
+      const digits = digitsFor(p.value, p.standardError);
+      const ends = p.interval95?.map((v) => formatNumber(inUnit(v, p.unit), digits));
+      return [
+        p.name,
+        supported(p.value, p.unit, p.standardError),
+        p.standardError === undefined ? "not told" : errorText(p.standardError, p.unit),
+        ends ? `${ends[0]} to ${ends[1]}` : "not told",
+        p.unit.name,
+        p.atBound ? `at its ${p.atBound} bound` : "",
+      ];
+    }),
+  );
+}
+
+function nuisanceTable({ nuisance }: Fit): string {
+  const rows = Object.entries(nuisance).flatMap(([key, terms]) =>
+    Object.entries(terms as Record<string, Estimate>).map(([name, e]) => [
+      `${name} of ${key}`,
+      supported(e.value, e.unit, e.standardError),
+      errorText(e.standardError, e.unit),
+      e.unit.name,
+    ]),
+  );
+  if (rows.length === 0) return "";
+  return table([{ title: "with" }, right("value"), right("standard error"), { title: "unit" }], rows);
+}
+
+function correlationTable({ correlation: { names, rows } }: Fit): string {
+  if (names.length < 2) return "";
+  return table(
+    [{ title: "correlation" }, ...names.slice(0, -1).map(right)],
+    names
+      .slice(1)
+      .map((name, i) => [
+        name,
+        ...names.slice(0, i + 1).map((_, j) => (Number.isFinite(rows[i + 1][j]) ? signed(rows[i + 1][j]) : "not told")),
+      ]),
+  );
+}
+
+const signed = (r: number): string => r.toFixed(3).replace("-", "−");
+
+function heldTable({ held }: Fit): string {
+  const moved = held.filter((h) => Math.abs(h.deviations) >= 0.05);
+  if (moved.length === 0) return "";
+  return table(
+    [{ title: "declared fact" }, right("moved by (standard deviations)")],
+    moved.map((h) => [h.says, formatNumber(h.deviations, 2)]),
+  );
+}
+
+const findingText = ({ code, message, fix }: FitFinding): string => `${code}: ${message}\n  fix: ${fix}`;

@@ -1,0 +1,48 @@
+import type { Plant } from "../../compile/plant.js";
+import { dimensions } from "../../units/dimension.js";
+import { formatNumber, formatQuantity } from "../../units/format.js";
+import { inUnit } from "../../units/unit.js";
+import { bodiesOf, vesselOf } from "../vessel.js";
+import { blocks, pairs, table } from "./table.js";
+
+/** Solved flows, volumes, space times and the vessel, for people. */
+export function networkText(plant: Plant): string {
+  const { units } = plant.network;
+  const [flow, volume, time] = [units.unitFor(dimensions.flow), units.unitFor(dimensions.volume), units.time];
+  const streams = table(
+    [{ title: "stream" }, { title: `flow, ${flow.name}`, align: "right" }, { title: "written" }, { title: "" }],
+    plant.streams.map((s) => [
+      `${s.from} ${s.role === "exchange" ? "<>" : "->"} ${s.to}`,
+      formatNumber(inUnit(s.flow, flow)),
+      s.written === "all" ? "" : s.written,
+      s.role === "forward" ? "" : s.role,
+    ]),
+  );
+  const bodies = bodiesOf(plant).map((b) => [
+    b.name,
+    b.kind,
+    formatNumber(inUnit(b.volume, volume)),
+    formatNumber(inUnit(b.flow, flow)),
+    b.flow > 0 || b.volume === 0 ? formatNumber(inUnit(b.spaceTime, time)) : "no flow",
+  ]);
+  const vessel = vesselOf(plant);
+  const dead = vessel.dead > 0 ? `, ${formatQuantity(vessel.dead, volume)} of it dead` : "";
+  return blocks(
+    streams,
+    table(
+      [
+        { title: "body" },
+        { title: "kind" },
+        { title: `volume, ${volume.name}`, align: "right" },
+        { title: `through-flow, ${flow.name}`, align: "right" },
+        { title: `space time, ${time.name}`, align: "right" },
+      ],
+      bodies,
+    ),
+    pairs([
+      ["vessel", `${formatQuantity(vessel.volume, volume)}${dead}`],
+      ["feed", formatQuantity(vessel.feed, flow)],
+      ["mean time", `${formatQuantity(vessel.meanTime, time)} (active volume over feed)`],
+    ]),
+  );
+}

@@ -1,0 +1,34 @@
+/** A cell: text, aligned left; or right where the column holds numbers. */
+export interface Column {
+  readonly title: string;
+  readonly align?: "left" | "right";
+}
+
+/**
+ * A table in aligned columns, two spaces between, the titles over it; no lines.
+ * @param indent spaces before each row
+ */
+export function table(columns: readonly Column[], rows: readonly (readonly string[])[], indent = 2): string {
+  const widths = columns.map((c, i) => Math.max(width(c.title), ...rows.map((r) => width(r[i] ?? ""))));
+  const line = (cells: readonly string[]): string =>
+    `${" ".repeat(indent)}${cells
+      .map((cell, i) => {
+        const space = " ".repeat(widths[i] - width(cell));
+        return columns[i].align === "right" ? space + cell : cell + space;
+      })
+      .join("  ")}`.trimEnd();
+  return [line(columns.map((c) => c.title)), ...rows.map((r) => line(columns.map((_, i) => r[i] ?? "")))].join("\n");
+}
+
+/** Pairs of words and values, values under one another. */
+export function pairs(rows: readonly (readonly [string, string])[], indent = 2): string {
+  const wide = Math.max(...rows.map(([word]) => width(word)));
+  return rows.map(([word, value]) => `${" ".repeat(indent)}${word.padEnd(wide)}  ${value}`.trimEnd()).join("\n");
+}
+
+/** Paragraphs with an empty line between. */
+export const blocks = (...parts: readonly (string | undefined)[]): string =>
+  parts.filter((p) => p !== undefined && p !== "").join("\n\n");
+
+/** Columns of a terminal, near enough: characters, without those that combine. */
+const width = (text: string): number => [...text.replace(/\p{Mark}/gu, "")].length;

@@ -1,0 +1,62 @@
+import { dimensions, sameDimension } from "../units/dimension.js";
+import { parseUnit } from "../units/parse.js";
+import { fromUnit, inUnit, type Unit } from "../units/unit.js";
+import { UsageError } from "./outcome.js";
+
+/** Times to compute, ascending, in s and as people asked for them. */
+export interface Clock {
+  readonly si: Float64Array;
+  readonly shown: readonly number[];
+  readonly unit: Unit;
+}
+
+export interface TimeOptions {
+  readonly until?: string;
+  readonly points?: number;
+  readonly times?: string;
+}
+
+const defaultPoints = 400;
+
+/**
+ * The times of `--times` (sorted), or a grid from 0 to `--until` of `--points` points.
+ * @param unit  of time where neither says one
+ * @param until the end of the grid, s, where it is not given
+ */
+export function clockFrom(options: TimeOptions, unit: Unit, until: () => number): Clock {
+  if (options.times !== undefined) {
+    if (options.until !== undefined || options.points !== undefined) {
+      throw new UsageError("--times stands alone: it leaves nothing for --until and --points to say");
+    }
+    return listed(options.times);
+  }
+  const end = options.until === undefined ? undefined : single(options.until);
+  const unitOf = end?.unit ?? unit;
+  const last = end?.shown[0] ?? inUnit(until(), unit);
+  if (!(last > 0)) throw new UsageError("--until must be later than 0");
+  const points = options.points ?? defaultPoints;
+  const shown = Array.from({ length: points }, (_, i) => (i === points - 1 ? last : (last * i) / (points - 1)));
+  return { si: Float64Array.from(shown, (t) => fromUnit(t, unitOf)), shown, unit: unitOf };
+}
+
+function single(text: string): Clock {
+  const clock = listed(text, "--until", '"6 h"');
+  if (clock.shown.length !== 1) throw new UsageError('--until takes one time, such as "6 h"');
+  return clock;
+}
+
+const number = /^[-+−]?(\d+\.?\d*|\.\d+)([eE][-+]?\d+)?$/;
+
+function listed(text: string, option = "--times", example = '"0.5, 1, 2.5 min"'): Clock {
+  const parts = text.split(",").map((p) => p.trim());
+  const last = /^(\S+)\s+(\S.*)$/.exec(parts[parts.length - 1]);
+  const unit = last && parseUnit(last[2].trim());
+  if (!last || !unit || "fault" in unit || !sameDimension(unit.dimension, dimensions.time)) {
+    throw new UsageError(`${option} '${text}' needs a unit of time at its end, such as ${example}`);
+  }
+  parts[parts.length - 1] = last[1];
+  const wrong = parts.find((p) => !number.test(p) || !Number.isFinite(Number(p.replace("−", "-"))));
+  if (wrong !== undefined) throw new UsageError(`${option}: '${wrong}' is not a number; write ${example}`);
+  const shown = parts.map((p) => Number(p.replace("−", "-"))).sort((a, b) => a - b);
+  return { si: Float64Array.from(shown, (t) => fromUnit(t, unit)), shown, unit };
+}

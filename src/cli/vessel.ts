@@ -1,0 +1,41 @@
+import { kindValues } from "../compile/evaluate.js";
+import type { Plant } from "../compile/plant.js";
+
+/** One body of a vessel as tables show it. SI. */
+export interface Body {
+  readonly name: string;
+  readonly kind: string;
+  readonly volume: number;
+  /** Through-flow by streams; exchange counts only where nothing else reaches the body. */
+  readonly flow: number;
+  /** volume / flow; infinite for what no flow reaches. */
+  readonly spaceTime: number;
+}
+
+/** The bodies that have a volume, in file order. */
+export function bodiesOf(plant: Plant): Body[] {
+  const { network, env, streams } = plant;
+  return network.compartments.flatMap((c): Body[] => {
+    if (c.values.volume === undefined) return [];
+    const volume = c.kind.volume(kindValues(c, env));
+    const sum = (exchange: boolean): number =>
+      streams
+        .filter((s) => (s.role === "exchange") === exchange && (s.to === c.name || (exchange && s.from === c.name)))
+        .reduce((total, s) => total + s.flow, 0);
+    const flow = sum(false) || sum(true);
+    return [{ name: c.name, kind: c.kind.name, volume, flow, spaceTime: volume === 0 ? 0 : volume / flow }];
+  });
+}
+
+/** The vessel as a whole. SI. */
+export function vesselOf(plant: Plant): {
+  volume: number;
+  active: number;
+  dead: number;
+  feed: number;
+  meanTime: number;
+} {
+  const feed = plant.feeds.reduce((sum, f) => sum + f.flow, 0);
+  const { total, active, dead } = plant.volume;
+  return { volume: total, active, dead, feed, meanTime: active / feed };
+}
