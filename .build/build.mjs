@@ -41,12 +41,18 @@ async function types() {
   });
 }
 
-await writeSchemas();
-rmSync(dist, { recursive: true, force: true });
-await Promise.all([
-  // The shebang comes from the entry file itself, so that only it carries one, not the chunks.
-  bundle("src/cli/main.ts", "backmix", { banner: { js: requireBanner } }),
-  bundle("src/index.ts", "index", { packages: "external" }),
-  types(),
-]);
+try {
+  await writeSchemas();
+  rmSync(dist, { recursive: true, force: true });
+  await Promise.all([
+    // The shebang comes from the entry file itself, so that only it carries one, not the chunks.
+    bundle("src/cli/main.ts", "backmix", { banner: { js: requireBanner } }),
+    bundle("src/index.ts", "index", { packages: "external" }),
+    types(),
+  ]);
+} catch (e) {
+  // esbuild has said what is wrong, and where.
+  if (!e.errors) throw e;
+  process.exit(1);
+}
 if (existsSync(join(dist, "backmix.js"))) chmodSync(join(dist, "backmix.js"), 0o755);

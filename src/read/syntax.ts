@@ -86,16 +86,16 @@ function reportLeading(at: Span, report: Report): void {
   report("leading-character", span, { character: text[0], quoted: quote(text) });
 }
 
-/** `|` and `>` begin a text block, whose text starts on the next line. */
-function blockHeader({ source, from }: Span): Span | undefined {
+/** Where a value on this line begins with `|` or `>` (a text block, whose text starts on the next line) or `*` (an alias, and no more). */
+function markedStart({ source, from }: Span): Span | undefined {
   const start = lineStart(source.text, from);
-  const header = /^(.*?(?::|-)\s+)[|>]/.exec(lineText(source, placeOf({ source, from, to: from }).line));
-  return header ? { source, from: start + header[1].length, to: from } : undefined;
+  const marked = /^(.*?(?::|-)\s+)[|>*]/.exec(lineText(source, placeOf({ source, from, to: from }).line));
+  return marked ? { source, from: start + marked[1].length, to: from } : undefined;
 }
 
 function other({ at, here, error, report }: SyntaxFault): void {
-  const header = /Not a YAML token|Block scalar header/i.test(error.message) ? blockHeader(at) : undefined;
-  if (header) reportLeading(header, report);
+  const start = /Not a YAML token|Block scalar header|at node end/i.test(error.message) ? markedStart(at) : undefined;
+  if (start) reportLeading(start, report);
   else if (/block-seq-ind/.test(error.message))
     report("yaml-syntax", here, {
       says: "a list item (`- `) begins on the line of its key",

@@ -72,6 +72,7 @@ describe("faults, each with its code and place", () => {
     ["a: @b\nunit: %\nz: {unit: %, b: `x`}\n", ["leading-character @b", "leading-character %", "leading-character %"]],
     ["a: | foo\n", ["leading-character | foo"]],
     ["rate: > 3\n", ["leading-character > 3"]],
+    ["a: *see b*\n", ["leading-character *see b*"]],
     ["a: *b\n", ["unknown-anchor *b"]],
     ["a: &b note\n", ["unused-anchor &b note"]],
     ["a: &x {b: *x}\n", ["anchor-circle *x"]],
