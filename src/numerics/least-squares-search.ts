@@ -23,6 +23,8 @@ export class Search {
   /** Lengths of the columns of the last Jacobian. */
   private columnNorms = new Float64Array(0);
   private end: "converged" | "no-progress" = "no-progress";
+  /** The last Jacobian: the end of one stage is the start of the next. */
+  private kept: { at: Point; accurate: boolean; jacobian: Float64Array } | undefined;
   private halted: "evaluations" | "cancelled" | undefined;
 
   constructor(private readonly o: LeastSquaresOptions) {
@@ -64,7 +66,7 @@ export class Search {
 
   /** For the statistics: also a run that used up its evaluations gets it. */
   lastJacobian(at: Point): Float64Array {
-    if (this.o.jacobian) return this.jacobian(at, true);
+    if (this.o.jacobian || (this.kept?.at === at && this.kept.accurate)) return this.jacobian(at, true);
     const evaluate = (p: Float64Array): ArrayLike<number> | undefined => this.residualsAt(p);
     return centralJacobian({ ...this.boxed, evaluate }, at.p, at.residuals);
   }
@@ -186,9 +188,14 @@ export class Search {
   }
 
   private jacobian(at: Point, accurate: boolean): Float64Array {
+    const { kept } = this;
+    if (kept?.at === at && (kept.accurate || !accurate)) return kept.jacobian;
     const given = this.o.jacobian?.(at.p);
-    if (given) return flat(given, at.residuals.length, this.n);
-    return accurate ? centralJacobian(this.boxed, at.p, at.residuals) : forwardJacobian(this.boxed, at.p, at.residuals);
+    const jacobian = given
+      ? flat(given, at.residuals.length, this.n)
+      : (accurate ? centralJacobian : forwardJacobian)(this.boxed, at.p, at.residuals);
+    if (!this.halted) this.kept = { at, accurate: accurate || given !== undefined, jacobian };
+    return jacobian;
   }
 }
 

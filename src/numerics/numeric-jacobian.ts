@@ -73,7 +73,7 @@ export function centralJacobian(f: Boxed, p: Float64Array, here: Float64Array): 
         if (at[j] < f.lower[j] || at[j] > f.upper[j]) return false;
         const there = offset === 0 ? here : f.evaluate(at);
         if (!there) return false;
-        for (let i = 0; i < m; i++) column[i] += weight * there[i];
+        for (let i = 0; i < m; i++) column[i] += weight * (there[i] - here[i]); // exactly 0 where nothing changes
         return true;
       });
       if (!reached) continue;

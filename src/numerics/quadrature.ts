@@ -28,7 +28,7 @@ interface Piece {
 /**
  * Integral of f from `from` to `to`, either of which may be infinite, by bisecting the worst piece (7 and 15 point
  * Gauss-Kronrod). f is never called at the ends or at a break.
- * A non-finite value of f makes the result NaN and `converged` false.
+ * A non-finite value of f makes the result non-finite and `converged` false.
  * @see R. Piessens et al., QUADPACK, Springer 1983 (QAG and its error estimate; QAGI's transform for infinite ranges)
  */
 export function quadrature(f: (x: number) => number, from: number, to: number, o: QuadratureOptions = {}): Quadrature {
@@ -47,7 +47,8 @@ export function quadrature(f: (x: number) => number, from: number, to: number, o
   for (;;) {
     const value = jobs.reduce((sum, j) => sum + j.value, 0);
     const error = jobs.reduce((sum, j) => sum + j.error, 0);
-    const enough = error <= Math.max(o.absolute ?? 0, (o.relative ?? 1e-10) * Math.abs(value));
+    const enough =
+      Number.isFinite(value) && error <= Math.max(o.absolute ?? 0, (o.relative ?? 1e-10) * Math.abs(value));
     if (enough || !Number.isFinite(value)) return { value, error, converged: enough, evaluations };
     const worst = jobs.reduce((w, j, k) => (j.error > jobs[w].error ? k : w), 0);
     const { g, from: a, to: b } = jobs[worst];

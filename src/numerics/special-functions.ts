@@ -14,8 +14,8 @@ export function logGamma(x: number): number {
 
 const halfLogTwoPi = 0.5 * Math.log(2 * Math.PI);
 const lanczos = [
-  0.99999999999980993, 676.5203681218851, -1259.1392167224028, 771.32342877765313, -176.61502916214059,
-  12.507343278686905, -0.13857109526572012, 9.9843695780195716e-6, 1.5056327351493116e-7,
+  0.9999999999998099, 676.5203681218851, -1259.1392167224028, 771.3234287776531, -176.6150291621406, 12.507343278686905,
+  -0.13857109526572012, 9.984369578019572e-6, 1.5056327351493116e-7,
 ];
 
 /** Smaller of a cumulative probability and what is left above it, both to full relative accuracy. */
@@ -103,6 +103,10 @@ function poissonTerm(a: number, x: number): number {
 function betaTerm(a: number, b: number, x: number, y: number): number {
   const n = a + b;
   if (a < 1 || b < 1) {
+    // Beside one far above 1, ln Gamma would lose digits: the other one is stepped up to where the formula below holds.
+    const steppable = Math.max(a, b) > 16 && Math.min(x, y) > 1e-100;
+    if (steppable && b < 1) return (betaTerm(a, b + 1, x, y) * b) / (y * n);
+    if (steppable) return (betaTerm(a + 1, b, x, y) * a) / (x * n);
     return Math.exp(a * Math.log(x) + b * Math.log(y) - logGamma(a) - logGamma(b) + logGamma(n));
   }
   const error = stirlingError(n) - stirlingError(a) - stirlingError(b) - deviance(a, n * x) - deviance(b, n * y);
