@@ -26,9 +26,11 @@ export function sparseRows(rows: readonly ReadonlyMap<number, number>[]): Sparse
 
 /** y = A x; no allocation. */
 export function multiply(a: SparseRows, x: Float64Array, y: Float64Array): void {
+  const { start, column, value } = a;
+  let k = 0;
   for (let i = 0; i < a.size; i++) {
     let sum = 0;
-    for (let k = a.start[i]; k < a.start[i + 1]; k++) sum += a.value[k] * x[a.column[k]];
+    for (const end = start[i + 1]; k < end; k++) sum += value[k] * x[column[k]];
     y[i] = sum;
   }
 }

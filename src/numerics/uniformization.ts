@@ -1,4 +1,4 @@
-import { multiply, type SparseRows } from "./sparse.js";
+import { multiply, type SparseRows, sparseRows } from "./sparse.js";
 
 /** Carries a state through x' = A x exactly, and its time integral with it. */
 export interface Propagator {
@@ -12,8 +12,11 @@ export interface Propagator {
   finish(d: number, x: Float64Array, z: Float64Array): void;
 }
 
-/** Rate times step of one step: Poisson weights stay well scaled and about 90 products serve all times in it. */
-const longestTheta = 32;
+/**
+ * Rate times step of one step. Long steps need fewer products with A a second, short ones fewer terms a time asked: long
+ * where the products cost, short where the system is small.
+ */
+const thetaFor = (size: number): number => (size > 64 ? 32 : 12);
 const mostTerms = 128;
 
 /**
@@ -26,8 +29,8 @@ export function uniformization(a: SparseRows): Propagator {
   const n = a.size;
   // Without any rate the state grows by its sources alone; any rate will do then, as the series ends by itself.
   const rate = largestRate(a) || 1;
-  const jump = { ...a, value: a.value.map((v) => v / rate) };
-  const powers = Array.from({ length: mostTerms }, () => new Float64Array(n));
+  const jump = jumpMatrix(a, rate);
+  const powers = Array.from({ length: termsFor(thetaFor(n)) }, () => new Float64Array(n));
   const weight = new Float64Array(mostTerms);
   const tail = new Float64Array(mostTerms);
   const read = { value: 0, integral: 0 };
@@ -42,15 +45,12 @@ export function uniformization(a: SparseRows): Propagator {
   }
 
   return {
-    longest: longestTheta / rate,
+    longest: thetaFor(n) / rate,
     begin(x, h) {
       ready = termsFor(rate * h);
       weighed = Number.NaN;
       powers[0].set(x);
-      for (let k = 1; k < ready; k++) {
-        multiply(jump, powers[k - 1], powers[k]);
-        for (let i = 0; i < n; i++) powers[k][i] += powers[k - 1][i];
-      }
+      for (let k = 1; k < ready; k++) multiply(jump, powers[k - 1], powers[k]);
     },
     at(d, states, weights) {
       weigh(d);
@@ -83,6 +83,19 @@ export function uniformization(a: SparseRows): Propagator {
   };
 }
 
+/** P = I + A / rate. */
+function jumpMatrix(a: SparseRows, rate: number): SparseRows {
+  return sparseRows(
+    Array.from({ length: a.size }, (_, i) => {
+      const row = new Map([[i, 1]]);
+      for (let k = a.start[i]; k < a.start[i + 1]; k++) {
+        row.set(a.column[k], (row.get(a.column[k]) ?? 0) + a.value[k] / rate);
+      }
+      return row;
+    }),
+  );
+}
+
 /** Largest rate at which a state empties. */
 export function largestRate(a: SparseRows): number {
   let rate = 0;
@@ -93,7 +106,7 @@ export function largestRate(a: SparseRows): number {
 }
 
 /** Terms until both weight and tail of a Poisson number are under round-off. */
-const termsFor = (theta: number): number => Math.min(mostTerms, Math.ceil(theta + 9 * Math.sqrt(theta) + 18));
+const termsFor = (theta: number): number => Math.min(mostTerms, Math.ceil(theta + 9 * Math.sqrt(theta) + 12));
 
 /** Weights P(N = k) and tails P(N > k) for a mean theta <= 32; returns how many matter (at most `limit`). */
 function poisson(theta: number, weight: Float64Array, tail: Float64Array, limit: number): number {
