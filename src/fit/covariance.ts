@@ -18,13 +18,18 @@ export interface LinearTheory {
  * normal equations (Golub & Van Loan, Matrix Computations, 4th ed. 2013, sections 5.4 and 5.5; estimable functions: Searle,
  * Linear Models, 1971, section 5.4).
  * @param columns    Jacobian by columns, all of one length
+ * @param nothing    length up to which a column is rounding, column by column; default 0
  * @param tolerance  a column that others reproduce to this fraction of its length counts as dependent; it must lie above the
  *                   error of the differences that made the columns
  */
-export function linearTheory(columns: readonly Float64Array[], tolerance = 1e-6): LinearTheory {
+export function linearTheory(
+  columns: readonly Float64Array[],
+  nothing: ArrayLike<number> = [],
+  tolerance = 1e-6,
+): LinearTheory {
   const n = columns.length;
   const m = columns[0]?.length ?? 0;
-  const length = Float64Array.from(columns, norm);
+  const length = Float64Array.from(columns, (c, j) => (norm(c) > (nothing[j] ?? 0) ? norm(c) : 0));
   const scaled = new Float64Array(m * n);
   for (let j = 0; j < n; j++)
     if (length[j] > 0) for (let i = 0; i < m; i++) scaled[j * m + i] = columns[j][i] / length[j];

@@ -25,8 +25,15 @@ export function estimatesOf({ problem, x, at }: Settled): Estimates {
   const { setup } = problem;
   const n = setup.coordinates.length;
   const columns = fullJacobian(problem, x, at);
-  const plain = linearTheory(columns.filter((_, j) => j < n || j >= x.length));
-  const whole = setup.held.length > 0 && x.length > n ? linearTheory(columns) : plain;
+  // A coordinate that moves the curve by no more than this over its whole range moves it by rounding alone.
+  const rounding = 1e-6 * signalOf(problem);
+  const nothing = columns.map((_, j) => (j < x.length ? rounding : 0));
+  const kept = columns.flatMap((_, j) => (j < n || j >= x.length ? [j] : []));
+  const plain = linearTheory(
+    kept.map((j) => columns[j]),
+    kept.map((j) => nothing[j]),
+  );
+  const whole = setup.held.length > 0 && x.length > n ? linearTheory(columns, nothing) : plain;
   const freedom = freedomOf(problem);
   const variance = freedom > 0 ? at.ofAll / freedom : Number.NaN;
   const autocorrelation = autocorrelationOf(setup.blocks, at.residuals);
@@ -116,6 +123,15 @@ function nuisanceOf(
     };
   }
   return { nuisance, names };
+}
+
+/** Length of the weighted measurements. */
+function signalOf({ setup, weight }: Settled["problem"]): number {
+  let sum = 0;
+  for (const b of setup.blocks) {
+    for (let i = 0; i < b.measured.length; i++) sum += (b.measured[i] * weight[b.from + i]) ** 2;
+  }
+  return Math.sqrt(sum);
 }
 
 const finite = (v: number): number | undefined => (Number.isFinite(v) ? v : undefined);

@@ -1,6 +1,9 @@
+import { type FitOptions, fit } from "../../src/fit/fit.js";
 import { networkModel } from "../../src/fit/network-model.js";
+import type { Fit } from "../../src/fit/result.js";
 import type { Network } from "../../src/model/network.js";
 import type { Trial } from "../../src/model/trial.js";
+import { random } from "../../src/numerics/random.js";
 import { trialOf } from "./load.js";
 
 /** A synthetic trial: keys of the document in YAML flow style, and what the instrument adds to the truth. */
@@ -45,3 +48,22 @@ export function synthetic(network: Network, truth: Readonly<Record<string, numbe
 
 export const every = (step: number, count: number): number[] =>
   Array.from({ length: count }, (_, i) => (i + 0.5) * step);
+
+/** Normal noise, seeded. */
+export function noisy(seed: number, sd: number): () => number {
+  const draw = random(seed);
+  return () => sd * draw.normal();
+}
+
+/** A fit that must be one. */
+export function fitted(network: Network, trials: readonly Trial[], options: FitOptions = {}): Fit {
+  const { fit: found, problems } = fit(network, trials, options);
+  if (!found) throw new Error(problems.map((p) => p.message).join("\n"));
+  return found;
+}
+
+export const parameterOf = (found: Fit, name: string): Fit["parameters"][number] => {
+  const p = found.parameters.find((q) => q.name === name);
+  if (!p) throw new Error(`no parameter ${name}`);
+  return p;
+};
