@@ -22,6 +22,8 @@ async function bundle(entry, name, options = {}) {
     target: "node20",
     chunkNames: "chunks/[name]-[hash]",
     define: { BACKMIX_VERSION: JSON.stringify(version) },
+    minifyWhitespace: true, // a third less to read at every start
+    minifySyntax: true,
     logLevel: "warning",
     ...options,
   });

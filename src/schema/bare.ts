@@ -2,13 +2,16 @@ import { editorKeywords, type Json, type JsonSchema, mapValues } from "./json-sc
 
 const annotations = new Set([...editorKeywords, "title", "description", "examples", "default"]);
 
-/** What a validator is compiled from: the schema without what only editors read, each part that recurs written once. */
+/**
+ * What a validator is compiled from: the schema without what only editors read. Parts that recur or are long stand apart, each a
+ * function of its own, so that a run compiles only those that its document meets.
+ */
 export function validatorSchema(schema: JsonSchema): JsonSchema {
   const plain = bare(schema);
   const counts = new Map<string, number>();
   visit(plain, (part) => counts.set(key(part), (counts.get(key(part)) ?? 0) + 1));
   const names = new Map<string, string>();
-  for (const [text, n] of counts) if (n > 1 && text.length > 200) names.set(text, `part${names.size}`);
+  for (const [text, n] of counts) if (text.length > (n > 1 ? 200 : 1000)) names.set(text, `part${names.size}`);
   const $defs: Record<string, Json> = {};
   const refer = (part: JsonSchema): JsonSchema => {
     const name = names.get(key(part));

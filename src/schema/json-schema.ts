@@ -44,7 +44,11 @@ export function jsonSchema(shape: Shape): JsonSchema {
     case "quantity":
       return { type: ["string", "number"] };
     case "whole":
-      return { type: "integer", minimum: shape.atLeast };
+      return {
+        type: "integer",
+        minimum: shape.atLeast,
+        ...(shape.atMost === undefined ? {} : { maximum: shape.atMost }),
+      };
     case "choice":
       return { enum: shape.of.map((word) => (/^\d+$/.test(word) ? Number(word) : word)) };
     case "name":

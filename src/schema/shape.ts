@@ -5,7 +5,7 @@ export type Shape =
   | { readonly is: "text" }
   /** A number with a unit or an expression; `dimension` one or several that are right there. */
   | { readonly is: "quantity"; readonly dimension: DimensionName | readonly DimensionName[] | "any" }
-  | { readonly is: "whole"; readonly atLeast: number }
+  | { readonly is: "whole"; readonly atLeast: number; readonly atMost?: number }
   /** `later`: words of the language that this version refuses. */
   | { readonly is: "choice"; readonly of: readonly string[]; readonly later?: readonly string[] }
   /** A name of the author's own, used as a value; dots reach into parts and repeats. */

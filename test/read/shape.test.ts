@@ -1,4 +1,8 @@
+import fc from "fast-check";
 import { describe, expect, test } from "vitest";
+import { plainOf } from "../../src/read/plain.js";
+import { documentKind } from "../../src/read/shape.js";
+import { documents } from "../../src/schema/validators.js";
 import { examples } from "./documents.js";
 import { check } from "./read.js";
 
@@ -146,4 +150,44 @@ test("injections and readings one or many", () => {
 test("findings name the nearest key", () => {
   const [{ fix }] = network("feds: {}").problems;
   expect(fix).toBe("did you mean `feeds`?");
+});
+
+describe("whatever stands where", () => {
+  const odd = fc.constantFrom(
+    "",
+    "null",
+    "7",
+    "-1",
+    "2.5",
+    "a b",
+    "[]",
+    "[1, 2]",
+    "{}",
+    "{x: 1}",
+    "{kind: stirred}",
+    "[[{}]]",
+    '"q"',
+  );
+
+  test("an odd value or key anywhere is worded, or right, and never a silent refusal", () => {
+    for (const text of Object.values(examples)) {
+      const spots = [...text.matchAll(/: ([^{}[\],\n#"]+?)(?=[,}\n\]])/g)].map((m) => [
+        m.index + 2,
+        m.index + 2 + m[1].length,
+      ]);
+      fc.assert(
+        fc.property(fc.constantFrom(...spots), odd, ([from, to], value) => {
+          const { tree, problems } = check(text.slice(0, from) + value + text.slice(to));
+          if (!tree) return;
+          const kind = documentKind(tree);
+          if (kind && !documents[kind].validate(plainOf(tree))) expect(problems.length).toBeGreaterThan(0);
+          for (const { message, fix } of problems)
+            expect(`${message} ${fix}`).not.toMatch(/undefined|\[object|something else/);
+          const places = problems.map((p) => `${p.code} ${p.at.from} ${p.message}`);
+          expect(new Set(places).size).toBe(places.length);
+        }),
+        { numRuns: 150 },
+      );
+    }
+  });
 });
