@@ -53,8 +53,9 @@ export function readCsv(source: Source, options: CsvOptions, report: Report): Cs
     report("csv-empty", all, { file: source.path });
   } catch (error) {
     if (!(error instanceof CsvError)) throw error;
-    const line = Number((error as { lines?: unknown }).lines ?? 1);
-    report("csv-quote", lineSpan(source, line), { file: source.path, line });
+    // The count at the error is where the file ended; the message names the line of the quotation mark.
+    const line = Number(/at line (\d+)/.exec(error.message)?.[1] ?? 1);
+    report("csv-quote", lineSpan(source, line), { line });
   }
   return undefined;
 }

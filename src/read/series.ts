@@ -65,7 +65,7 @@ export function readSeries(source: Source, spec: SeriesSpec, report: Report): Re
   let notNumber: Wrong | undefined;
   let back: Wrong | undefined;
   let twice: Wrong | undefined;
-  let backFrom = 0;
+  let [backFrom, backTo, twiceAt] = [0, 0, 0];
   for (const r of rows) {
     const timeCell = r.cells[timeColumn] ?? "";
     const valueCell = r.cells[valueColumn] ?? "";
@@ -81,9 +81,12 @@ export function readSeries(source: Source, spec: SeriesSpec, report: Report): Re
       t += 86_400;
     }
     if (t < last) {
-      if (!back) backFrom = last;
+      if (!back) [backFrom, backTo] = [last, t];
       back = countWrong(back, r, timeColumn);
-    } else if (t === last) twice = countWrong(twice, r, timeColumn);
+    } else if (t === last) {
+      if (!twice) twiceAt = t;
+      twice = countWrong(twice, r, timeColumn);
+    }
     last = t;
     if (isMissing(valueCell, spec.csv)) {
       missing++;
@@ -122,12 +125,12 @@ export function readSeries(source: Source, spec: SeriesSpec, report: Report): Re
     report("time-back", wrongAt(table, back), {
       row: back.row.line,
       before: show(backFrom),
-      now: cell(back),
+      now: show(backTo),
       others: back.others,
     });
   }
   if (twice) {
-    report("time-twice", wrongAt(table, twice), { row: twice.row.line, time: cell(twice), others: twice.others });
+    report("time-twice", wrongAt(table, twice), { row: twice.row.line, time: show(twiceAt), others: twice.others });
   }
   if (notTime || notNumber || back) return undefined;
   if (n < 3) {

@@ -22,19 +22,20 @@ export function resolveInjection(
   const form = resolveForm(node, table, clock, anyWord, report);
   const lasting = resolveValue(child(node, "lasting"), dimensions.time, emptyScope, report);
   if (!aboveZero("the time that an injection takes", lasting, true, report)) return undefined;
+  const first = form?.is === "signal" ? form.table.time[0] : clock.format ? clock.first : 0;
   const startNode = child(node, "start");
-  const start = startNode
-    ? clock.time(startNode, report)
-    : form?.is === "signal"
-      ? form.table.time[0]
-      : clock.format
-        ? clock.first
-        : 0;
+  const start = startNode ? startOf(startNode, clock, report) : first;
   if (!form || start === undefined || at?.type !== "scalar") return undefined;
-  if (startNode && clock.last > clock.first && start > clock.last) {
-    report("start-late", startNode.at, { start: clock.show(start), last: clock.show(clock.last) });
-  }
   return { at: at.text, where: at.at, start, lasting: lasting?.of([]) ?? 0, form };
+}
+
+/** A start on the trial's clock. On a clock without dates, more than half a day after the last reading is the day before. */
+function startOf(node: Tree, clock: TrialClock, report: Report): number | undefined {
+  const start = clock.time(node, report);
+  if (start === undefined || clock.last === clock.first || start <= clock.last) return start;
+  if (clock.format && !clock.format.dated && start > clock.last + 43_200) return start - 86_400;
+  report("start-late", node.at, { start: clock.show(start), last: clock.show(clock.last) });
+  return undefined;
 }
 
 function resolveForm(
@@ -44,17 +45,15 @@ function resolveForm(
   anyWord: boolean,
   report: Report,
 ): Injection["form"] | undefined {
-  const found = ["pulse", "step", "signal"].filter((key) => child(node, key));
-  if (found.length !== 1) {
-    report("injection-form", node.at, { found });
-    return undefined;
-  }
-  const written = child(node, found[0]);
-  if (found[0] === "pulse") {
+  // Exactly one is there: the shape check has seen to it.
+  const is = (["pulse", "step", "signal"] as const).find((key) => child(node, key));
+  if (!is) return undefined;
+  const written = child(node, is);
+  if (is === "pulse") {
     const amount = resolveDetectorValue(written, anyWord, report);
     return amount && aboveZero("the amount of tracer", amount, false, report) ? { is: "pulse", amount } : undefined;
   }
-  if (found[0] === "signal") {
+  if (is === "signal") {
     const inlet = table && written?.type === "map" ? inletSeries(written, table, clock, report) : undefined;
     return inlet && { is: "signal", table: inlet };
   }

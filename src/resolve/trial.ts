@@ -36,7 +36,9 @@ export function resolveTrial(
   };
   const readTables = readingNodes.map(table);
   const inletTables = injectionNodes.map((node) => table(signalNode(node)));
-  const clock = trialClock([...readTables, ...inletTables].filter((t) => t !== undefined));
+  const tables = [...readTables, ...inletTables].filter((t) => t !== undefined);
+  const clock = trialClock(tables);
+  if (!oneClock(tables, report)) return undefined;
 
   const onClock = (t: ResolvedTable | undefined): ResolvedTable | undefined => t && moved(t, -clock.originOf(t.clock));
   const injections = injectionNodes.map((node, i) =>
@@ -80,11 +82,21 @@ function values(node: Tree | undefined, wanted: Dimension | "any", scope: Scope,
   return found;
 }
 
+/** Elapsed times and clock times have no common zero. */
+function oneClock(tables: readonly ResolvedTable[], report: Report): boolean {
+  const clocked = tables.find((t) => t.clock);
+  const elapsed = tables.find((t) => !t.clock);
+  if (!clocked?.clock || !elapsed) return true;
+  const { series } = elapsed;
+  report("clocks-mixed", series.at, { file: series.file, clock: clocked.series.file, format: clocked.clock.text });
+  return false;
+}
+
 function moved(table: ResolvedTable, by: number): ResolvedTable {
   return by === 0 ? table : { ...table, series: { ...table.series, time: table.series.time.map((t) => t + by) } };
 }
 
-/** A clock without dates whose log ends more than half a day before the injection was started on the next day. */
+/** Beside a log that runs past midnight, one that ends more than half a day before the injection is of the next day. */
 function afterMidnight(table: ResolvedTable | undefined, start: number, clock: TrialClock): ResolvedTable | undefined {
   if (!table?.clock || table.clock.dated || clock.format?.dated) return table;
   const last = table.series.time[table.series.time.length - 1];

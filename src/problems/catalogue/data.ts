@@ -22,9 +22,9 @@ export const dataEntries = {
     says: ({ file }) => `'${file}' is not a text file`,
     fix: "save the sheet as CSV and name that file",
   }),
-  "csv-quote": entry<{ file: string; line: number }>({
+  "csv-quote": entry<{ line: number }>({
     severity: "error",
-    says: ({ line }) => `a quotation mark is opened by line ${line} and never closed`,
+    says: ({ line }) => `a quotation mark is opened on line ${line} and never closed`,
     fix: "close it, or take it out of the text",
   }),
   "header-missing": entry<{ line: number; last: number }>({
@@ -98,13 +98,11 @@ export const dataEntries = {
       `only ${points} ${points === 1 ? "row has" : "rows have"} a value${missing > 0 ? `, ${missing} are missing` : ""}: a curve needs 3`,
     fix: "name the column that holds the readings, or a longer log",
   }),
-  "injection-form": entry<{ found: readonly string[] }>({
+  "clocks-mixed": entry<{ file: string; clock: string; format: string }>({
     severity: "error",
-    says: ({ found }) =>
-      found.length === 0
-        ? "nothing says what was put in"
-        : `what was put in is said ${found.length} times: ${found.join(", ")}`,
-    fix: "give one of `pulse: 50 g`, `step: 2 g/L` or `signal: {file: …}`",
+    says: ({ file, clock, format }) =>
+      `'${file}' has elapsed times, '${clock}' times written as ${format}: nothing says how the two clocks fit`,
+    fix: "log all readings of a trial on one clock, or make two trials",
   }),
   "start-unclear": entry<{ text: string; example: string }>({
     severity: "error",

@@ -1,0 +1,18 @@
+import { readFileSync } from "node:fs";
+import { expect, test } from "vitest";
+import { parseTrial } from "../../src/parse/trial.js";
+import { dataEntries } from "../../src/problems/catalogue/data.js";
+
+const read = (path: string) => {
+  try {
+    return readFileSync(path);
+  } catch {
+    return undefined;
+  }
+};
+
+test.each(Object.keys(dataEntries))("%s: the broken example has this fault and no other", (code) => {
+  const path = `test/broken/${code}.yaml`;
+  const { problems } = parseTrial(readFileSync(path, "utf8"), { path, read });
+  expect([...new Set(problems.map((p) => p.code))]).toEqual([code]);
+});
