@@ -14,7 +14,7 @@ export interface LeastSquaresOptions {
   readonly allowed?: (p: Float64Array) => boolean;
   /** Relative fall of the sum of squares, and relative step, under which the search ends. Default 1e-10. */
   readonly tolerance?: number;
-  /** Calls of `residuals`, those for differences included. Default 1000 (n + 1). */
+  /** Calls of `residuals`, those for differences included. Default 2000 (n + 1). */
   readonly maxEvaluations?: number;
   /**
    * False leaves out the central differences, the last steps on them and the covariance (NaN): enough for one of many rough starts.

@@ -1,14 +1,8 @@
 import type { LeastSquaresOptions } from "./least-squares-options.js";
+import { type Point, polished } from "./least-squares-polish.js";
 import { columnNorm, compress, promised as promisedFall, slope } from "./linear-model.js";
 import { type Boxed, centralJacobian, forwardJacobian } from "./numeric-jacobian.js";
 import { movable, scaledLength, trustStep } from "./trust-step.js";
-
-/** A point of the search. */
-export interface Point {
-  readonly p: Float64Array;
-  readonly residuals: Float64Array;
-  readonly sum: number;
-}
 
 /** One descent to a least sum of squares; `leastSquares` says how. */
 export class Search {
@@ -38,7 +32,7 @@ export class Search {
     this.start = Float64Array.from(o.start, (x, j) => Math.min(Math.max(x, this.lower[j]), this.upper[j]));
     const typical = vector(o.scale, n, "scale", (j) => Math.abs(o.start[j])).map((s) => Math.abs(s) || 1);
     this.boxed = { evaluate: (p) => this.evaluate(p), lower: this.lower, upper: this.upper, typical };
-    this.maxEvaluations = o.maxEvaluations ?? 1000 * (n + 1);
+    this.maxEvaluations = o.maxEvaluations ?? 2000 * (n + 1);
     this.tolerance = o.tolerance ?? 1e-10;
   }
 
@@ -54,7 +48,11 @@ export class Search {
       if (this.halted) break;
     }
     if (!polish || this.halted) return best;
-    best = this.polish(best);
+    best = polished(best, this.lower, this.upper, {
+      jacobian: (at) => this.jacobian(at, true),
+      tryStep: (p, step) => this.tryStep(p, step),
+      halted: () => this.halted !== undefined,
+    });
     if (this.halted === "evaluations") this.halted = undefined; // it had arrived before they ran out
     return best;
   }
@@ -128,27 +126,6 @@ export class Search {
       const felt = this.columnNorms[j] > 0 ? Math.sqrt(sum) / this.columnNorms[j] : typical[j];
       typical[j] = Math.max(Math.abs(p[j]), Math.min(typical[j], felt)) || typical[j];
     }
-  }
-
-  /**
-   * Gauss-Newton steps on the accurate Jacobian for as long as they get shorter: near the optimum the sum of squares is flat to
-   * rounding long before the parameters are.
-   */
-  private polish(from: Point): Point {
-    let at = from;
-    let before = Number.POSITIVE_INFINITY;
-    for (let round = 0; round < 40; round++) {
-      const model = compress(this.jacobian(at, true), at.residuals, this.n);
-      const scale = Float64Array.from({ length: this.n }, (_, j) => columnNorm(model, j) || 1);
-      const box = { p: at.p, lower: this.lower, upper: this.upper };
-      const { step, length } = trustStep(model, box, scale, Number.POSITIVE_INFINITY);
-      if (this.halted || !(length < 0.9 * before) || length > 1e-3 * scaledLength(at.p, scale)) return at;
-      const next = this.tryStep(at.p, step);
-      if (!next || this.halted || next.sum > at.sum * (1 + 1e-12)) return at;
-      at = next;
-      before = length;
-    }
-    return at;
   }
 
   /** The point a step away; a step that leaves what is allowed is cut back to where it does. */

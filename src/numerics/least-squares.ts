@@ -1,6 +1,7 @@
 import { covarianceOf } from "./covariance.js";
 import type { LeastSquaresOptions } from "./least-squares-options.js";
-import { type Point, Search } from "./least-squares-search.js";
+import type { Point } from "./least-squares-polish.js";
+import { Search } from "./least-squares-search.js";
 
 export type { LeastSquaresOptions } from "./least-squares-options.js";
 
