@@ -125,12 +125,12 @@ function spikesOf(passages: readonly Passage[], flow: number, pulse: boolean) {
 }
 
 /**
- * When the curve is over: the time at which F reaches `level` of its end at every outlet, at most 20 mean times. s.
+ * When the curve is over: the time at which F reaches `level` of its end at every outlet, at most `mostMeans` mean times. s.
  * @param entry name of the place injected into
  */
-export function settlingTime(plant: Plant, at: string, level = 0.999): number {
+export function settlingTime(plant: Plant, at: string, level = 0.999, mostMeans = 20): number {
   const total = plant.feeds.reduce((sum, f) => sum + f.flow, 0);
-  const most = (20 * plant.volume.active) / total;
+  const most = (mostMeans * plant.volume.active) / total;
   if (!(most > 0)) return 1;
   const entry = plant.entry.get(at) as number;
   const all = moments(plant, entry);
