@@ -1,31 +1,23 @@
-import { circle, element, group, line, path, rectangle } from "../svg/marks.js";
+import { circle, group, line, path, rectangle } from "../svg/marks.js";
 import { type Point, samples, spinePath } from "../svg/spine.js";
-import { type Box, escapeText, px, type Svg } from "../svg/svg.js";
-import { drawingDefinitions, drawingStyle, type Theme } from "../svg/theme.js";
+import { type Box, px, type Svg } from "../svg/svg.js";
 import type { Arcs } from "./blocks.js";
 import { type Caption, caption, drawCaption, extent } from "./caption.js";
 import { type Layout, layOut, type Ribbon, union } from "./layout.js";
+import { type PictureOptions, picture } from "./picture.js";
 import { amount, roundAmount, typeset } from "./scale.js";
 import type { FlowSheet } from "./sheet.js";
-
-export interface DrawOptions {
-  /** `auto` (default) follows the reader's screen and prints light. */
-  readonly theme?: Theme;
-  /** Leave out the title and the line under it, where a page already says them. */
-  readonly untitled?: boolean;
-}
 
 const margin = 18;
 
 /** The flow diagram of a sheet as one self-contained SVG: bodies sized by volume, streams by flow. */
-export function drawNetwork(sheet: FlowSheet, options: DrawOptions = {}): Svg {
+export function drawNetwork(sheet: FlowSheet, options: PictureOptions = {}): Svg {
   const layout = layOut(sheet);
   const legend = legendOf(sheet, layout);
   const heading = options.untitled ? [] : headingOf(sheet, layout);
   const all = union([layout.bounds, ...legend.captions.map((c) => c.box), legend.box, ...heading.map((c) => c.box)]);
   const view = { x: all.x - margin, y: all.y - margin, width: all.width + 2 * margin, height: all.height + 2 * margin };
   const parts = [
-    rectangle(view, "paper"),
     rectangle(layout.frame, "frame", 14),
     group("streams", inDrawingOrder(layout.ribbons).map(drawRibbon)),
     group(
@@ -39,20 +31,7 @@ export function drawNetwork(sheet: FlowSheet, options: DrawOptions = {}): Svg {
     ...[...heading, ...layout.captions, ...layout.labels.map((l) => l.caption), ...legend.captions].map(drawCaption),
     legend.marks,
   ];
-  return element(
-    "svg",
-    {
-      xmlns: "http://www.w3.org/2000/svg",
-      class: "bm",
-      viewBox: [view.x, view.y, view.width, view.height].map(px).join(" "),
-      width: view.width,
-      height: view.height,
-      style: "max-width:100%;height:auto",
-      role: "img",
-    },
-    `<title>${escapeText(sheet.title)}</title><desc>${escapeText(inWords(sheet))}</desc>` +
-      `<style>${drawingStyle(options.theme ?? "auto")}</style>${drawingDefinitions}${parts.join("")}`,
-  );
+  return picture(sheet.title, inWords(sheet), view, options.theme ?? "auto", parts);
 }
 
 /** What the drawing shows, for those who cannot see it. */

@@ -1,0 +1,201 @@
+import { line, path } from "../svg/marks.js";
+import { textWidth } from "../svg/measure.js";
+import { type Box, px, type Svg } from "../svg/svg.js";
+import { formatNumber } from "../units/format.js";
+import { type Axis, bottomAxis, leftAxis, leftRoom, linearAxis, logAxis } from "./axes.js";
+import { caption, drawCaption } from "./caption.js";
+import { Clutter } from "./clutter.js";
+import { separated } from "./heights.js";
+import { placeAt } from "./line-labels.js";
+import { type PictureOptions, picture } from "./picture.js";
+import { area, points, stems, trace } from "./traces.js";
+
+/** Measured and fitted curve of one or more readings, each above its residuals. All arrays of a reading are of one length. */
+export interface FitCurve {
+  readonly title: string;
+  readonly timeUnit: string;
+  /** What is measured and its unit: "tracer, g/L". */
+  readonly value: string;
+  readonly readings: readonly FitReading[];
+}
+
+export interface FitReading {
+  /** Trial and place. */
+  readonly label: string;
+  readonly time: ArrayLike<number>;
+  readonly measured: ArrayLike<number>;
+  readonly fitted: ArrayLike<number>;
+  readonly residual: ArrayLike<number>;
+  /** Points that the fit did not use, and why. */
+  readonly leftOut?: readonly { readonly time: number; readonly because: string }[];
+  /** 95 % of fitted curves lie here. */
+  readonly band?: { readonly low: ArrayLike<number>; readonly high: ArrayLike<number> };
+  /** Ticks under the time axis: t10, mean, t90. */
+  readonly marks?: readonly { readonly name: string; readonly time: number }[];
+  /** File that the points came from. */
+  readonly source?: string;
+}
+
+export interface FitCurveOptions extends PictureOptions {
+  /** A logarithmic value axis, for tails. */
+  readonly log?: boolean;
+  /** Width of a panel in px, 640 by default. */
+  readonly width?: number;
+}
+
+const plotHeight = 230;
+const stripHeight = 52;
+
+/** Measured points small and open, the fitted line on top, its band behind; residuals below on the same time axis. */
+export function drawFit(curve: FitCurve, options: FitCurveOptions = {}): Svg {
+  const width = options.width ?? 640;
+  const parts: Svg[] = [];
+  let y = 0;
+  if (!options.untitled) {
+    parts.push(drawCaption(caption([{ words: curve.title, style: "title" }], 0, 0)));
+    y += 34;
+  }
+  for (const reading of curve.readings) {
+    const panel = drawPanel(reading, curve, y, width, options.log ?? false);
+    parts.push(panel.svg);
+    y = panel.bottom + 20;
+  }
+  const view = { x: -16, y: -12, width: width + 32, height: y + 4 };
+  return picture(curve.title, inWords(curve), view, options.theme ?? "auto", parts);
+}
+
+function drawPanel(
+  r: FitReading,
+  curve: FitCurve,
+  top: number,
+  width: number,
+  log: boolean,
+): { svg: Svg; bottom: number } {
+  const head = caption([{ words: r.source ? `${r.label}, from ${r.source}` : r.label, style: "quiet" }], 0, top);
+  const values = [...Array.from(r.measured), ...Array.from(r.fitted)];
+  const yRange = [top + 42 + plotHeight, top + 42] as const;
+  const ay = log
+    ? logAxis(values, yRange)
+    : linearAxis([...values, 0, 1.06 * Math.max(0, ...values.filter(Number.isFinite))], yRange, 5, false);
+  const largest = Math.max(...Array.from(r.residual, Math.abs).filter(Number.isFinite), 0) || 1;
+  const stripTop = top + 42 + plotHeight + 20;
+  const ar = linearAxis([-largest, largest], [stripTop + stripHeight, stripTop], 2, false);
+  const strip3 = { ...ar, ticks: [-largest, 0, largest].map((v) => Number(v.toPrecision(2))) };
+  const left = Math.max(leftRoom(ay), leftRoom(strip3));
+  const plot: Box = { x: left, y: top + 42, width: width - left, height: plotHeight };
+  const strip: Box = { ...plot, y: stripTop, height: stripHeight };
+  const ax = linearAxis(r.time as Iterable<number> & ArrayLike<number>, [plot.x, plot.x + plot.width], 8, false);
+  const floor = log ? ay.domain[0] * (1 - 1e-12) : Number.NEGATIVE_INFINITY;
+  const measured = points(r.time, r.measured, ax, ay, "point", floor);
+  const hidden = log && measured.hidden > 0 ? `, ${measured.hidden} at or below the axis not shown` : "";
+  const clutter = clutterOf(r, ax, ay);
+  const svg = [
+    drawCaption(head),
+    leftAxis(ay, plot, curve.value),
+    r.band ? area(r.time, r.band.low, r.band.high, ax, ay) : "",
+    measured.svg,
+    trace(r.time, r.fitted, ax, ay, "curve", floor),
+    rug(r, ax, plot, clutter),
+    placeAt({ words: "fitted", style: "name" }, besideLine(r.time, r.fitted, ax, ay), clutter, plot) ?? "",
+    placeAt(
+      { words: `measured, ${r.time.length} points${hidden}`, style: "quiet" },
+      besideLine(r.time, r.measured, ax, ay),
+      clutter,
+      plot,
+    ) ?? "",
+    bottomAxis(ax, plot, "", true),
+    leftAxis({ ...strip3, ticks: strip3.ticks.filter((t) => t !== 0) }, strip, ""),
+    line(strip.x, ar.at(0), strip.x + strip.width, ar.at(0), "axis"),
+    stems(r.time, r.residual, ax, ar),
+    drawCaption(caption([{ words: "residual", style: "quiet" }], strip.x + strip.width, strip.y - 16, "end")),
+    bottomAxis(ax, strip, `time, ${curve.timeUnit}`),
+    timeMarks(r, ax, strip),
+  ].join("");
+  return { svg, bottom: strip.y + strip.height + (r.marks?.length ? 46 : 36) };
+}
+
+/** Places beside a line, from its highest point rightwards, then leftwards. */
+function* besideLine(
+  time: ArrayLike<number>,
+  value: ArrayLike<number>,
+  ax: Axis,
+  ay: Axis,
+): Generator<{ x: number; y: number }> {
+  let peak = 0;
+  for (let k = 1; k < value.length; k++) if (value[k] > value[peak] || !Number.isFinite(value[peak])) peak = k;
+  for (const away of [6, 14, 26, 42, 64, 90, 130]) {
+    const step = Math.max(1, Math.round(value.length / 60));
+    for (let k = peak; k < time.length; k += step) {
+      if (!Number.isFinite(value[k])) continue;
+      yield { x: ax.at(time[k]) + away, y: ay.at(value[k]) - 7 };
+      yield { x: ax.at(time[k]) + away * 0.7, y: ay.at(value[k]) - 12 - away * 0.7 };
+    }
+  }
+}
+
+function clutterOf(r: FitReading, ax: Axis, ay: Axis): Clutter {
+  const clutter = new Clutter();
+  for (const line of [r.measured, r.fitted]) {
+    let before: { x: number; y: number } | undefined;
+    for (let k = 0; k < r.time.length; k++) {
+      if (!Number.isFinite(line[k])) continue;
+      const here = { x: ax.at(r.time[k]), y: ay.at(line[k]) };
+      const joined = line === r.fitted && before ? before : here;
+      const [x, y] = [Math.min(here.x, joined.x), Math.min(here.y, joined.y)];
+      clutter.add({
+        x: x - 2,
+        y: y - 2,
+        width: Math.abs(here.x - joined.x) + 4,
+        height: Math.abs(here.y - joined.y) + 4,
+      });
+      before = here;
+    }
+  }
+  return clutter;
+}
+
+/** What was left out, as ticks along the top, with the reasons. */
+function rug(r: FitReading, ax: Axis, plot: Box, clutter: Clutter): Svg {
+  const out = r.leftOut ?? [];
+  if (out.length === 0) return "";
+  const reasons = [...new Set(out.map((o) => o.because))].join("; ");
+  const d = out
+    .filter((o) => o.time >= ax.domain[0] && o.time <= ax.domain[1])
+    .map((o) => `M${px(ax.at(o.time))} ${px(plot.y)}v8`)
+    .join("");
+  const words = `left out: ${reasons}`;
+  const first = ax.at(out[0].time);
+  const spots = [first, plot.x + plot.width - textWidth(words, 11), plot.x + 4].map((x) => ({ x, y: plot.y + 10 }));
+  return path(d, "point out") + (placeAt({ words, style: "quiet" }, spots, clutter, plot) ?? "");
+}
+
+/** Small marks under the time axis, their names apart from one another. */
+function timeMarks(r: FitReading, ax: Axis, plot: Box): Svg {
+  const marks = [...(r.marks ?? [])]
+    .filter((m) => m.time >= ax.domain[0] && m.time <= ax.domain[1])
+    .sort((a, b) => a.time - b.time);
+  const words = marks.map((m) => `${m.name} ${formatNumber(m.time, 3)}`);
+  const widths = words.map((w) => textWidth(w, 11, "bold"));
+  const gaps = marks.slice(1).map((_, k) => (widths[k] + widths[k + 1]) / 2 + 8);
+  const at = separated(
+    marks.map((m) => ax.at(m.time)),
+    marks.map(() => 1),
+    gaps,
+  );
+  const y = plot.y + plot.height;
+  return marks
+    .map((m, k) => {
+      const x = ax.at(m.time);
+      const tip = path(`M${px(x)} ${px(y)}l-4 7h8Z`, "terminal");
+      return tip + drawCaption(caption([{ words: words[k], style: "plain" }], at[k], y + 30, "middle"));
+    })
+    .join("");
+}
+
+function inWords(curve: FitCurve): string {
+  const parts = curve.readings.map((r) => {
+    const marks = (r.marks ?? []).map((m) => `${m.name} ${formatNumber(m.time, 3)} ${curve.timeUnit}`).join(", ");
+    return `${r.label}: ${r.time.length} measured points and the fitted line${marks ? `; ${marks}` : ""}`;
+  });
+  return `${curve.value} against time in ${curve.timeUnit}, residuals below. ${parts.join(". ")}.`;
+}

@@ -1,0 +1,28 @@
+import { element, rectangle } from "../svg/marks.js";
+import { type Box, escapeText, px, type Svg } from "../svg/svg.js";
+import { drawingDefinitions, drawingStyle, type Theme } from "../svg/theme.js";
+
+export interface PictureOptions {
+  /** `auto` (default) follows the reader's screen and prints light. */
+  readonly theme?: Theme;
+  /** Leave out the title and the line under it, where a page already says them. */
+  readonly untitled?: boolean;
+}
+
+/** A whole SVG that stands by itself: its own style, its title and what it shows in words. */
+export function picture(title: string, says: string, view: Box, theme: Theme, parts: readonly Svg[]): Svg {
+  return element(
+    "svg",
+    {
+      xmlns: "http://www.w3.org/2000/svg",
+      class: "bm",
+      viewBox: [view.x, view.y, view.width, view.height].map(px).join(" "),
+      width: view.width,
+      height: view.height,
+      style: "max-width:100%;height:auto",
+      role: "img",
+    },
+    `<title>${escapeText(title)}</title><desc>${escapeText(says)}</desc>` +
+      `<style>${drawingStyle(theme)}</style>${drawingDefinitions}${rectangle(view, "paper")}${parts.join("")}`,
+  );
+}
