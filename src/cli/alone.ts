@@ -1,5 +1,6 @@
 import { Worker } from "node:worker_threads";
-import { type ExitStatus, type Io, onInterrupt, streams, terminal } from "./io.js";
+import { type ExitStatus, files, type Io, onInterrupt, streams, terminal } from "./io.js";
+import { tellFault } from "./run.js";
 
 /** What the working thread tells the one that listens. */
 export type Message = { readonly out: string } | { readonly err: string } | { readonly end: ExitStatus };
@@ -32,7 +33,7 @@ export function runAlone(args: readonly string[], script: URL): Promise<ExitStat
       else status = m.end;
     });
     worker.on("error", (e) => {
-      streams.err(`backmix: this is a fault of backmix, not of your file: ${e.message}\n`);
+      status = tellFault(e, args, { ...files(data.cwd), ...terminal(), ...streams, cancelled: () => false });
     });
     worker.on("exit", () => {
       listenNoMore();

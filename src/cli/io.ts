@@ -1,5 +1,6 @@
 import { mkdirSync, readFileSync, renameSync, rmSync, statSync, writeFileSync } from "node:fs";
 import { dirname, resolve } from "node:path";
+import { UsageError } from "./usage.js";
 
 /** 0 done; 1 input wrong; 2 wrong usage; 3 numerics did not converge, or a fault of ours; 130 interrupted. */
 export type ExitStatus = 0 | 1 | 2 | 3 | 130;
@@ -10,7 +11,7 @@ export interface Io {
   read(path: string): Uint8Array | string | undefined;
   /** True where something is at the path, readable or not. */
   exists(path: string): boolean;
-  /** Writes a file whole or not at all; makes its folder. */
+  /** Writes a file whole or not at all; makes its folder. Throws UsageError where it cannot. */
   write(path: string, content: string): void;
   out(text: string): void;
   err(text: string): void;
@@ -36,14 +37,14 @@ export function files(cwd: string): Pick<Io, "read" | "exists" | "write"> {
     },
     write(path, content) {
       const target = resolve(cwd, path);
-      mkdirSync(dirname(target), { recursive: true });
       const draft = `${target}.${process.pid}.tmp`;
       try {
+        mkdirSync(dirname(target), { recursive: true });
         writeFileSync(draft, content);
         renameSync(draft, target);
       } catch (e) {
         rmSync(draft, { force: true });
-        throw e;
+        throw new UsageError(`'${path}' cannot be written: ${(e as NodeJS.ErrnoException).code ?? String(e)}`);
       }
     },
   };

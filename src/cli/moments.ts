@@ -29,7 +29,7 @@ export function moments(file: string, { vessel }: MomentsOptions, { inputs }: Co
           flowAt: (at) => knownOnDay(network, trial, (plant) => flowThrough(plant, at)),
           volume: knownOnDay(network, trial, (plant) => plant.volume.total),
           throughflow: knownOnDay(network, trial, (plant) => vesselOf(plant).feed),
-          timeUnit: network.units.time,
+          ...(trial.clock ? { timeUnit: network.units.time } : {}),
         }
       : {},
   );

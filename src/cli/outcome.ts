@@ -14,8 +14,7 @@ export interface Outcome {
   readonly notes?: readonly string[];
 }
 
-/** The command line is wrong: exit status 2. */
-export class UsageError extends Error {}
+export { UsageError } from "./usage.js";
 
 /** The documents are wrong: exit status 1, with what is wrong. */
 export class InputError extends Error {

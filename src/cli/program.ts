@@ -18,6 +18,9 @@ export interface Stage {
 /** Commands of the language's contract that this version does not have. */
 const laterCommands = "equations, sweep, plan, verify, tidy, diff, watch, language-server".split(", ");
 
+/** The commands that this version has. */
+export const commandNames: ReadonlySet<string> = new Set(["check", "draw", "simulate", "moments", "fit", "study"]);
+
 /** Every command with its arguments and options. The work itself is loaded when it is asked for. */
 export function program(stage: Stage): Command {
   const root = new Command("backmix")
@@ -101,7 +104,7 @@ function addSimulate(root: Command, { perform, inputs, io }: Stage): void {
 
 function addMoments(root: Command, { perform, inputs, io }: Stage): void {
   command(root, "moments <trial>", "what the data say by themselves, without a model", [
-    "moments networks/demo/salt-pulse.yaml",
+    "moments networks/demo/salt-normal.yaml",
   ])
     .option("--vessel <network>", "the network that gives flows and volume, before the trial's own `vessel:`")
     .action((trial: string, options) =>
@@ -111,7 +114,7 @@ function addMoments(root: Command, { perform, inputs, io }: Stage): void {
 
 function addFit(root: Command, { perform, inputs, io }: Stage): void {
   const fit = command(root, "fit <network>", "estimate the parameters of a network from trials", [
-    "fit networks/demo/bypass.yaml --trial networks/demo/salt-pulse.yaml",
+    "fit networks/demo/bypass.yaml --trial networks/demo/salt-normal.yaml",
   ])
     .requiredOption("--trial <files...>", "the trials, all fitted at once; repeatable")
     .option("--free <names>", "parameters to estimate, by commas (default: all)", collectNames)

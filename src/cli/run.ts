@@ -1,11 +1,23 @@
 import { CommanderError } from "commander";
 import { problemJson } from "../problems/json.js";
 import { printProblems } from "../problems/print.js";
+import type { Problem } from "../problems/problem.js";
 import { Inputs } from "./inputs.js";
 import type { ExitStatus, Io } from "./io.js";
 import { InputError, type Outcome, UsageError } from "./outcome.js";
-import { program } from "./program.js";
+import { commandNames, program } from "./program.js";
 import { version } from "./version.js";
+
+/** Says that the program itself is at fault, in the form that the command line asks for. */
+export function tellFault(e: unknown, args: readonly string[], io: Io): ExitStatus {
+  return tell(fault(e), commandIn(args) ?? "backmix", args, new Inputs(io), io);
+}
+
+function tell(outcome: Outcome, command: string, args: readonly string[], inputs: Inputs, io: Io): ExitStatus {
+  if (asksForJson(args)) io.out(`${JSON.stringify(document(command, inputs, outcome))}\n`);
+  else printForPeople(outcome, inputs.warnings, io);
+  return outcome.status;
+}
 
 /**
  * Runs one command line.
@@ -14,13 +26,8 @@ import { version } from "./version.js";
  */
 export async function run(args: readonly string[], io: Io): Promise<ExitStatus> {
   const inputs = new Inputs(io);
-  const json = asksForJson(args);
-  let command = args.find((a) => !a.startsWith("-")) ?? "backmix";
-  const finish = (outcome: Outcome): ExitStatus => {
-    if (json) io.out(`${JSON.stringify(document(command, inputs, outcome))}\n`);
-    else printForPeople(outcome, io);
-    return outcome.status;
-  };
+  let command = commandIn(args) ?? "backmix";
+  const finish = (outcome: Outcome): ExitStatus => tell(outcome, command, args, inputs, io);
   let said = "";
   const hear = (text: string): void => {
     said += text;
@@ -37,6 +44,8 @@ export async function run(args: readonly string[], io: Io): Promise<ExitStatus> 
     return finish(outcomeOf(e, said, args));
   }
 }
+
+const commandIn = (args: readonly string[]): string | undefined => args.find((a) => !a.startsWith("-"));
 
 const asksForJson = (args: readonly string[]): boolean => {
   const end = args.indexOf("--");
@@ -58,9 +67,10 @@ function document(command: string, inputs: Inputs, { json, problems }: Outcome):
   };
 }
 
-function printForPeople({ text, problems, notes }: Outcome, io: Io): void {
+function printForPeople({ text, problems = [], notes = [] }: Outcome, warnings: readonly Problem[], io: Io): void {
   if (text !== "") io.out(text.endsWith("\n") ? text : `${text}\n`);
-  const after = [...(problems?.length ? [printProblems(problems, { colour: io.colour.err })] : []), ...(notes ?? [])];
+  const all = [...warnings, ...problems];
+  const after = [...(all.length > 0 ? [printProblems(all, { colour: io.colour.err })] : []), ...notes];
   if (after.length > 0) io.err(`${after.join("\n")}\n`);
 }
 
@@ -76,8 +86,9 @@ function outcomeOf(e: unknown, said: string, args: readonly string[]): Outcome {
 }
 
 function wrongUsage(message: string, args: readonly string[], help?: string): Outcome {
-  const command = args.find((a) => !a.startsWith("-"));
-  const hint = help ?? `see: backmix ${command === undefined ? "" : `${command} `}--help`;
+  const command = commandIn(args);
+  const known = command !== undefined && commandNames.has(command);
+  const hint = help ?? `see: backmix ${known ? `${command} ` : ""}--help`;
   const notes = help === undefined ? [`backmix: ${message}`, hint] : [hint.trimEnd()];
   return { status: 2, text: "", json: { ok: false, error: { kind: "usage", message } }, notes };
 }

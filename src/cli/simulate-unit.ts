@@ -13,7 +13,7 @@ import type { SimulateOptions } from "./simulate.js";
 import { blocks } from "./text/table.js";
 import { balanceLine, momentsTable, spikesText } from "./text/tracer.js";
 import { clockFrom } from "./times.js";
-import { perUnit, pureNumber } from "./units.js";
+import { balanceUnit, perUnit, pureNumber } from "./units.js";
 
 /** `simulate --pulse` and `--step`: a unit of tracer. */
 export function simulateUnit(network: Network, options: SimulateOptions, { inputs, io }: Context): Outcome {
@@ -51,7 +51,7 @@ export function simulateUnit(network: Network, options: SimulateOptions, { input
       `${network.title}: a unit ${form} into ${into}, ${clock.shown.length} times to ${formatNumber(last)} ${clock.unit.name} (${result.engine})`,
       momentsTable(result.readings, clock.unit),
       spikesText(result.readings, clock.unit),
-      balanceLine(result.balance, pureNumber),
+      balanceLine(result.balance, balanceUnit(form, clock.unit)),
       peaks(result.readings, clock.shown, valueUnit.factor, valueUnit.name, clock.unit.name),
       difference === undefined
         ? ""

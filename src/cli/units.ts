@@ -19,3 +19,6 @@ export const squared = (unit: Unit): Unit => ({
 
 /** A pure number, bare in text and `1` in JSON. */
 export const pureNumber = one;
+
+/** Amounts are counted in units of tracer after a pulse; after a step in what is dosed per time: a time. */
+export const balanceUnit = (form: "pulse" | "step", time: Unit): Unit => (form === "pulse" ? pureNumber : time);

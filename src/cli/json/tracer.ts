@@ -2,8 +2,8 @@ import type { Balance } from "../../simulate/respond.js";
 import type { TracerReading, TracerResult } from "../../simulate/tracer.js";
 import type { Unit } from "../../units/unit.js";
 import type { Clock } from "../times.js";
-import { perUnit, pureNumber, squared } from "../units.js";
-import { finite, pure, quantity, series } from "./quantity.js";
+import { balanceUnit, perUnit, pureNumber, squared } from "../units.js";
+import { finite, quantity, series } from "./quantity.js";
 
 /** What `simulate --pulse` and `--step` found. */
 export function tracerJson(result: TracerResult, clock: Clock, form: "pulse" | "step"): Record<string, unknown> {
@@ -20,7 +20,7 @@ export function tracerJson(result: TracerResult, clock: Clock, form: "pulse" | "
       spikesLeftOut: r.spikesLeftOut,
     })),
     moments: result.readings.map((r) => momentsJson(r, unit)),
-    balance: balanceJson(result.balance, pureNumber),
+    balance: balanceJson(result.balance, balanceUnit(form, unit)),
   };
 }
 
@@ -39,6 +39,6 @@ export function momentsJson({ at, area, moments }: Pick<TracerReading, "at" | "a
 
 /** Where all tracer is at the end of the run. */
 export const balanceJson = ({ injected, left, inside, recovered, closure }: Balance, unit: Unit): object => {
-  const of = (amount: number): object => (unit.name === "" ? pure(amount) : quantity(amount, unit));
+  const of = (amount: number) => quantity(amount, unit);
   return { injected: of(injected), left: of(left), inside: of(inside), recovered: of(recovered), closure };
 };

@@ -1,7 +1,6 @@
 import type { Estimate, Fit, FitFinding } from "../../fit/result.js";
 import { formatNumber } from "../../units/format.js";
-import { inUnit } from "../../units/unit.js";
-import { digitsFor, errorText, supported } from "./digits.js";
+import { errorText, supported } from "./digits.js";
 import { blocks, table } from "./table.js";
 
 /** What a fit found, for people. */
@@ -36,11 +35,12 @@ function parametersTable(fit: Fit): string {
       { title: "" },
     ],
     fit.parameters.map((p) => {
-      const digits = digitsFor(p.value, p.standardError);
-      const ends = p.interval95?.map((v) => formatNumber(inUnit(v, p.unit), digits));
+      // A quarter of the interval stands for the error: it is wider than the standard error where facts have a ±.
+      const spread = p.interval95 ? (p.interval95[1] - p.interval95[0]) / 4 : p.standardError;
+      const ends = p.interval95?.map((v) => supported(v, p.unit, spread));
       return [
         p.name,
-        supported(p.value, p.unit, p.standardError),
+        supported(p.value, p.unit, spread),
         p.standardError === undefined ? "not told" : errorText(p.standardError, p.unit),
         ends ? `${ends[0]} to ${ends[1]}` : "not told",
         p.unit.name,

@@ -52,7 +52,7 @@ function figureText(name: string, f: Figure): string {
   if (f.value === undefined) return f.why;
   const isShare = name === "recovery";
   const unit = isShare ? { ...f.unit, name: "%", factor: 0.01 } : f.unit;
-  const error = f.standardError === undefined ? "" : ` ± ${errorText(f.standardError, unit)}`;
+  const error = !f.standardError ? "" : ` ± ${errorText(f.standardError, unit)}`;
   return `${supported(f.value, unit, f.standardError)}${error}${unit.name ? ` ${unit.name}` : ""}`;
 }
 

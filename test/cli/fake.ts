@@ -1,0 +1,72 @@
+import { readFileSync } from "node:fs";
+import type { ExitStatus, Io } from "../../src/cli/io.js";
+import { run } from "../../src/cli/run.js";
+
+const root = new URL("../../", import.meta.url);
+
+/** What a command did to the world. */
+export interface Ran {
+  readonly status: ExitStatus;
+  readonly out: string;
+  readonly err: string;
+  readonly written: ReadonlyMap<string, string>;
+}
+
+export interface Surroundings {
+  /** Files by path, before those of the repository; `-` is standard input; undefined: not there. */
+  readonly files?: Readonly<Record<string, string | Uint8Array | undefined>>;
+  readonly isTerminal?: boolean;
+  readonly cancelled?: () => boolean;
+}
+
+/** Runs a command line in this process, in the root of the repository, writing nothing. */
+export async function backmix(
+  args: readonly string[],
+  { files = {}, isTerminal = false, cancelled }: Surroundings = {},
+): Promise<Ran> {
+  let out = "";
+  let err = "";
+  const written = new Map<string, string>();
+  const read: Io["read"] = (path) => {
+    if (path in files) return files[path];
+    try {
+      return readFileSync(new URL(path, root));
+    } catch {
+      return undefined;
+    }
+  };
+  const status = await run(args, {
+    read,
+    exists: (path) => read(path) !== undefined,
+    write: (path, content) => void written.set(path, content),
+    out: (text) => {
+      out += text;
+    },
+    err: (text) => {
+      err += text;
+    },
+    isTerminal,
+    colour: { out: false, err: false },
+    cancelled: cancelled ?? (() => false),
+  });
+  return { status, out, err, written };
+}
+
+/** The same with `--json`: one document, nothing else on standard output. */
+export async function json(
+  args: readonly string[],
+  surroundings?: Surroundings,
+): Promise<{ status: ExitStatus; document: Json }> {
+  const { status, out } = await backmix([...args, "--json"], surroundings);
+  return { status, document: JSON.parse(out) };
+}
+
+/** A parsed document, to be looked into by path. */
+export type Json = { readonly [key: string]: Json } & { readonly [index: number]: Json };
+
+/** A value in a document by its path: `readings.0.mean.value`. */
+export function at(document: unknown, path: string): unknown {
+  let here = document;
+  for (const key of path.split(".")) here = (here as Record<string, unknown> | null | undefined)?.[key];
+  return here;
+}
