@@ -6,6 +6,8 @@ export declare class Solver {
   relativeTolerance: number | number[];
   absoluteTolerance: number | number[];
   denseOutput: boolean;
+  /** How many substeps of a trial step are watched for instability; 0: none. */
+  stabilityCheckCount: number;
   solve(
     rhs: (x: number, y: number[]) => ArrayLike<number>,
     from: number,
