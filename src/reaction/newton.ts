@@ -75,17 +75,20 @@ function iterate(system: BlockSystem, w: Workspace, y: Float64Array, limit: numb
 function settle(system: BlockSystem, w: Workspace, y: Float64Array, limit: number): void {
   if (!system.residual(y, w.f)) return;
   let norm = size(w.f);
-  let pace = Math.min(...Array.from(system.memory).filter((m) => m > 0)) / 10;
-  if (!Number.isFinite(pace)) return;
+  let least = Math.min(...Array.from(system.memory).filter((m) => m > 0)) / 10;
+  if (!Number.isFinite(least)) return;
+  let pace = least;
   for (let k = 0; k < limit && norm > 1e-12; k++) {
     if (!newtonStep(system, w, y, 1 / pace)) return;
     const next = take(system, w, y, 1);
     if (next === undefined) {
       pace /= 4;
+      least = Math.min(least, pace);
       if (!system.residual(y, w.f)) return;
       continue;
     }
-    pace *= Math.min(Math.max(norm / next, 0.2), 3);
+    // On the way the residual may grow (a reaction that ignites): time must go on all the same.
+    pace = Math.max(least, pace * Math.min(Math.max(norm / next, 0.2), 3));
     norm = next;
   }
 }

@@ -198,4 +198,13 @@ describe("where something runs out", () => {
     expect(s.concentrations[plant.nodes.findIndex((n) => n.name === "pocket")]).toBeNaN();
     expect(s.outlets[0].concentrations[0]).toBeGreaterThan(0);
   });
+
+  test("an autocatalytic reaction that has to ignite, closed form", () => {
+    const chemistry = chemistryOf(["A", "B"], { k: 1 }, [power(2, [1, 1], [-1, 1])]);
+    const s = steadyState(tank, chemistry, dutyOf(chemistry, { feed: { A: 1, B: 1e-6 } }));
+    // b = b0 + k tau (1 + b0 - b) b, the larger root; k tau = 4.
+    const [p, q] = [1 - 4 * (1 + 1e-6), -1e-6];
+    expect(s.converged).toBe(true);
+    expect(s.outlets[0].concentrations[1]).toBeCloseTo((-p + Math.sqrt(p * p - 16 * q)) / 8, 11);
+  });
 });
