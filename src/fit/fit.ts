@@ -1,7 +1,8 @@
+import { checkTrial } from "../check/trial.js";
 import type { Network } from "../model/network.js";
 import type { Trial } from "../model/trial.js";
 import type { Problem } from "../problems/problem.js";
-import { collector } from "../problems/report.js";
+import { collector, hasErrors } from "../problems/report.js";
 import { criteriaOf } from "./criteria.js";
 import { estimatesOf } from "./estimates.js";
 import { findingsOf } from "./findings.js";
@@ -50,7 +51,8 @@ export function fitWith(
   options: FitOptions = {},
 ): FitOutcome {
   const { report, problems } = collector();
-  const setup = prepare(model, network, trials, options.free, report);
+  for (const trial of trials) checkTrial(network, trial, report);
+  const setup = hasErrors(problems) ? undefined : prepare(model, network, trials, options.free, report);
   if (!setup) return { fit: undefined, problems };
   const watch: Watch = { cancelled: () => options.cancelled?.() ?? false, progress: options.progress ?? (() => {}) };
 

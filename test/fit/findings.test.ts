@@ -114,4 +114,39 @@ describe("what a fit must say", () => {
     expect(found.parameters.map((p) => p.name)).toEqual(["last"]);
     expect(parameterOf(found, "last").value).toBeCloseTo(0.008, 3);
   });
+
+  test("hopeless data end in words, never in an exception", () => {
+    const network = line("{a: {value: 30 L, between: [1 L, 200 L]}, last: {value: 5 L, between: [1 L, 40 L]}}", "a");
+    const of = (value: (truth: number) => number, reading: string[] = []) =>
+      fitted(
+        network,
+        [
+          synthetic(
+            network,
+            { a: 0.09, last: 0.008 },
+            {
+              injection: "{at: feed, pulse: 50 g}",
+              at: "out",
+              times: every(2, 20),
+              noise: (_, c) => value(c) - c,
+              reading,
+            },
+          ),
+        ],
+        { starts: 4 },
+      );
+    const zero = of(() => 0, ["scale: free"]);
+    expect(zero.findings.map((f) => f.code)).toContain("cannot-tell");
+    const flat = of(() => 0.3, ["scale: free", "baseline: constant"]);
+    expect(flat.findings.length).toBeGreaterThan(0);
+    const upside = of((c) => 0.5 - c, ["scale: free", "baseline: constant"]);
+    expect(upside.findings.map((f) => f.code)).toContain("scale-not-positive");
+  });
+
+  test("a trial of another vessel is a problem with its place", () => {
+    const network = line("{last: {value: 5 L, between: [1 L, 40 L]}}", "50 L");
+    const trial = trialFor(network, { last: 0.02 });
+    const lost = { ...trial, readings: trial.readings.map((r) => ({ ...r, at: "outt" })) };
+    expect(fit(network, [lost]).problems.map((p) => p.code)).toEqual(["unknown-place"]);
+  });
 });

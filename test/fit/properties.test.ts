@@ -155,7 +155,7 @@ outlets: [out]
         return i !== undefined && i[0] <= truth[name] && truth[name] <= i[1];
       });
     }).flat();
-    // Binomial(24, 0.95): 19 or fewer has probability 0.5 %.
+    // Binomial(24, 0.95): 19 or fewer has probability 0.6 %.
     expect(inside.filter(Boolean).length).toBeGreaterThan(19);
   });
 });
