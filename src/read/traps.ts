@@ -1,5 +1,5 @@
 import type { Report } from "../problems/report.js";
-import { correctedLine } from "./lines.js";
+import { correctedLine, quote } from "./lines.js";
 import type { Entry, ListNode, MapNode, ScalarNode, Tree } from "./tree.js";
 
 /**
@@ -49,7 +49,7 @@ function mendGlued(entry: Entry, report: Report): Entry {
   return { key: part(key, key.at.from, colon), value: part(key, colon + 1, key.at.to) };
 }
 
-/** A value whose tail a comma cut off: a call whose bracket is open, or a decimal comma. `tails`: the lone keys that follow. */
+/** A value whose tail a comma cut off: a call whose bracket is open, a decimal comma, or the rest of a text. `tails`: the lone keys that follow. */
 function mendCut(
   entry: Entry,
   tails: readonly (ScalarNode | undefined)[],
@@ -61,12 +61,13 @@ function mendCut(
   let n = 0;
   let whole = head;
   let written = "";
-  for (let tail = tails[0]; tail && openBrackets(whole.text) > 0; tail = tails[n] as ScalarNode) {
+  for (let tail = tails[0]; tail && (openBrackets(whole.text) > 0 || isProse(tail)); tail = tails[n] as ScalarNode) {
+    if (n === 0 && isDecimal(head, tail)) break;
     whole = part(head, head.at.from, tail.at.to);
-    written = `"${whole.text}"`;
+    written = quote(whole.text);
     n++;
   }
-  if (n === 0 && /\d$/.test(head.text) && /^\d/.test(tails[0].text)) {
+  if (n === 0 && isDecimal(head, tails[0])) {
     written = `${head.text}.${tails[0].text}`;
     whole = { ...part(head, head.at.from, tails[0].at.to), text: written };
     n = 1;
@@ -76,6 +77,13 @@ function mendCut(
   report("comma-in-braces", whole.at, { text, corrected: correctedLine(whole.at, written) });
   return { entry: { key: entry.key, value: whole }, tails: n };
 }
+
+/** `1,5 L`, not `max(1,5)`: which of the two that is nobody can tell. */
+const isDecimal = (head: ScalarNode, tail: ScalarNode): boolean =>
+  /\d$/.test(head.text) && /^\d/.test(tail.text) && openBrackets(head.text) <= 0;
+
+/** Words that cannot be a key: the rest of a text. */
+const isProse = ({ text }: ScalarNode): boolean => !/^[A-Za-z][\w.-]*(:\S.*)?$/.test(text);
 
 /** A plain scalar of a stretch of the same source. */
 const part = (node: ScalarNode, from: number, to: number): ScalarNode => ({

@@ -129,6 +129,12 @@ describe("YAML's own traps are mended, so that the rest can be checked", () => {
       { volume: "max(b, c, d)" },
     ],
     ["a: {volume: 1,5 L, to: d}", "comma-in-braces 1,5 L", "a: {volume: 1.5 L, to: d}", { volume: "1.5 L", to: "d" }],
+    [
+      "a: {about: in mol, g or counts, not kg/L, to: d}",
+      "comma-in-braces in mol, g or counts, not kg/L",
+      'a: {about: "in mol, g or counts, not kg/L", to: d}',
+      { about: "in mol, g or counts, not kg/L", to: "d" },
+    ],
     ["a: {volume:1 L}", "colon-without-space volume:1 L", "a: {volume: 1 L}", { volume: "1 L" }],
   ])("%s", (text, found, fix, mended) => {
     const { tree, problems, findings } = read(text);
@@ -141,6 +147,10 @@ describe("YAML's own traps are mended, so that the rest can be checked", () => {
 
   test("one call of three arguments is one finding", () => {
     expect(read("a: {volume: max(b, c, d)}").findings).toHaveLength(1);
+  });
+
+  test("a word after a comma may be a key that was left without value", () => {
+    expect(read("a: {about: red, blue}").findings).toEqual([]);
   });
 
   test("a key that was left without value is not such a trap", () => {
