@@ -12,8 +12,32 @@ export function mendTraps(tree: MapNode, report: Report): MapNode {
 
 function mend(tree: Tree, report: Report): Tree {
   if (tree.type === "map") return mendMap(tree, report);
-  if (tree.type === "list") return { ...tree, items: tree.items.map((i) => mend(i, report)) } satisfies ListNode;
-  return tree;
+  return tree.type === "list" ? mendList(tree, report) : tree;
+}
+
+/** `[max(a, b) < c]`: a call that the comma cut. */
+function mendList(list: ListNode, report: Report): ListNode {
+  const brackets = list.at.source.text[list.at.from] === "[";
+  const items: Tree[] = [];
+  for (let i = 0; i < list.items.length; i++) {
+    let item = mend(list.items[i], report);
+    const first = i;
+    for (let next = list.items[i + 1]; brackets && isCut(item) && isPlain(next); next = list.items[i + 1]) {
+      item = part(item, item.at.from, next.at.to);
+      i++;
+    }
+    if (i > first && item.type === "scalar") reportCut(item, quote(item.text), report);
+    items.push(item);
+  }
+  return { ...list, items };
+}
+
+const isPlain = (node: Tree | undefined): node is ScalarNode => node?.type === "scalar" && node.plain && !node.empty;
+const isCut = (node: Tree): node is ScalarNode => isPlain(node) && openBrackets(node.text) > 0;
+
+function reportCut({ at }: ScalarNode, written: string, report: Report): void {
+  const text = at.source.text.slice(at.from, at.to);
+  report("comma-in-braces", at, { text, corrected: correctedLine(at, written) });
 }
 
 function mendMap(map: MapNode, report: Report): MapNode {
@@ -57,7 +81,7 @@ function mendCut(
 ): { entry: Entry; tails: number } {
   const head = entry.value;
   const none = { entry, tails: 0 };
-  if (head.type !== "scalar" || !head.plain || head.empty || !tails[0]) return none;
+  if (!isPlain(head) || !tails[0]) return none;
   let n = 0;
   let whole = head;
   let written = "";
@@ -73,8 +97,7 @@ function mendCut(
     n = 1;
   }
   if (n === 0) return none;
-  const text = part(head, whole.at.from, whole.at.to).text;
-  report("comma-in-braces", whole.at, { text, corrected: correctedLine(whole.at, written) });
+  reportCut(whole, written, report);
   return { entry: { key: entry.key, value: whole }, tails: n };
 }
 

@@ -135,6 +135,7 @@ describe("YAML's own traps are mended, so that the rest can be checked", () => {
       'a: {about: "in mol, g or counts, not kg/L", to: d}',
       { about: "in mol, g or counts, not kg/L", to: "d" },
     ],
+    ["a: [max(b, c) < d, e]", "comma-in-braces max(b, c) < d", 'a: ["max(b, c) < d", e]', ["max(b, c) < d", "e"]],
     ["a: {volume:1 L}", "colon-without-space volume:1 L", "a: {volume: 1 L}", { volume: "1 L" }],
   ])("%s", (text, found, fix, mended) => {
     const { tree, problems, findings } = read(text);

@@ -107,7 +107,7 @@ export const yamlEntries = {
   }),
   "comma-in-braces": entry<{ text: string; corrected: string }>({
     severity: "error",
-    says: (d) => `inside braces the comma cuts '${d.text}' in two`,
+    says: (d) => `inside braces and brackets a comma cuts '${d.text}' in two`,
     fix: (d) => `write \`${d.corrected}\`, or give the value a line of its own`,
   }),
   "colon-without-space": entry<{ key: string; corrected: string }>({
