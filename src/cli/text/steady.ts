@@ -1,0 +1,52 @@
+import type { Plant } from "../../compile/plant.js";
+import type { Duty } from "../../model/duty.js";
+import type { SteadyState } from "../../reaction/steady.js";
+import { formatNumber, formatQuantity } from "../../units/format.js";
+import { inUnit } from "../../units/unit.js";
+import { speciesUnits } from "../species.js";
+import { blocks, pairs, table } from "./table.js";
+
+/** The steady state of a duty, for people. */
+export function steadyText(plant: Plant, duty: Duty, steady: SteadyState): string {
+  const { species } = steady;
+  const units = speciesUnits(plant.network, duty, species);
+  const n = species.length;
+  const row = (name: string, concentrations: ArrayLike<number>): string[] => [
+    name,
+    ...species.map((_, i) =>
+      Number.isNaN(concentrations[i]) ? "no flow" : formatNumber(inUnit(concentrations[i], units[i])),
+    ),
+  ];
+  const bodies = plant.network.compartments.flatMap((c) => {
+    const node = plant.exit.get(c.name);
+    return node === undefined ? [] : [row(c.name, steady.concentrations.subarray(node * n, node * n + n))];
+  });
+  const worst = steady.closure.reduce((most, c) => Math.max(most, Math.abs(c)), 0);
+  const at = duty.temperature
+    ? [["temperature", formatQuantity(duty.temperature.of([]), temperatureUnit(duty))] as const]
+    : [];
+  return blocks(
+    `${plant.network.title}: ${duty.title}${steady.converged ? "" : " (not converged: best found)"}`,
+    table(
+      [
+        { title: "leaving" },
+        ...species.map((s, i) => ({ title: units[i].name ? `${s}, ${units[i].name}` : s, align: "right" as const })),
+      ],
+      [
+        ...steady.feeds.map((f) => row(f.name, f.concentrations)),
+        ...bodies,
+        ...steady.outlets.map((o) => row(o.name, o.concentrations)),
+      ],
+    ),
+    pairs([
+      ...at,
+      [
+        "balances",
+        `every species closes to ${formatNumber(worst, 1)}, every node to ${formatNumber(steady.residual, 1)}`,
+      ],
+    ]),
+  );
+}
+
+const temperatureUnit = (duty: Duty) =>
+  duty.temperature?.unit ?? { name: "K", factor: 1, offset: 0, dimension: [0, 0, 0, 0, 1, 0, 0] as const };

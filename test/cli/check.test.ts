@@ -1,0 +1,100 @@
+import { describe, expect, test } from "vitest";
+import { at, backmix, json } from "./fake.js";
+import { files } from "./vessels.js";
+
+describe("check", () => {
+  test("prints the balance of a sound network", async () => {
+    const { status, out } = await backmix(["check", "vessel.yaml"], { files });
+    expect(status).toBe(0);
+    expect(out).toMatchInlineSnapshot(`
+      "vessel.yaml: network, ok
+
+        stream           flow, L/min  written
+        feed -> bulk               9  rest
+        feed -> product            1  bypass
+        bulk -> product            9
+        bulk <> corner           1.5  1.5 L/min  exchange
+
+        body    kind     volume, L  through-flow, L/min  space time, min
+        bulk    stirred        700                    9            77.78
+        corner  stirred        200                  1.5            133.3
+        sump    dead           100                    0          no flow
+
+        vessel     1000 L, 100 L of it dead
+        feed       10 L/min
+        mean time  90 min (active volume over feed)
+      "
+    `);
+  });
+
+  test("gives the balance as JSON in the file's units", async () => {
+    const { document } = await json(["check", "vessel.yaml"], { files });
+    expect(Object.keys(document)).toEqual(["backmix", "command", "inputs", "ok", "files", "problems"]);
+    const network = at(document, "files.0.network") as object;
+    expect(Object.keys(network)).toEqual(["flows", "volumes", "spaceTimes", "vessel"]);
+    const value = (path: string): number => at(network, `${path}.value`) as number;
+    expect(value("flows.feed>bulk")).toBeCloseTo(9, 12);
+    expect(value("flows.bulk<>corner")).toBeCloseTo(1.5, 12);
+    expect(value("volumes.sump")).toBeCloseTo(100, 12);
+    expect(value("spaceTimes.bulk")).toBeCloseTo(700 / 9, 10);
+    expect(at(network, "spaceTimes.sump")).toEqual({ value: null, unit: "min", why: "infinite" });
+    for (const [key, expected] of Object.entries({ volume: 1000, active: 900, dead: 100, feed: 10, meanTime: 90 })) {
+      expect(value(`vessel.${key}`)).toBeCloseTo(expected, 10);
+    }
+    expect(at(network, "vessel.feed.unit")).toBe("L/min");
+  });
+
+  test("looks at every file, also after a broken one", async () => {
+    const { status, document } = await json(["check", "broken.yaml", "tank.yaml", "nowhere.yaml"], { files });
+    expect(status).toBe(1);
+    expect((at(document, "files") as unknown as { ok: boolean }[]).map((f) => f.ok)).toEqual([false, true, false]);
+    expect(at(document, "problems.0.file")).toBe("broken.yaml");
+    expect(at(document, "problems.0.line")).toBe(3);
+    expect((at(document, "inputs") as unknown as { path: string }[]).map((i) => i.path)).toEqual([
+      "broken.yaml",
+      "tank.yaml",
+    ]);
+  });
+
+  test("shows a problem with its line, mark and fix", async () => {
+    const { out } = await backmix(["check", "broken.yaml"], { files });
+    expect(out).toContain("broken.yaml: network, 1 error");
+    expect(out).toMatch(/broken\.yaml:3:\d+ share-sum: /);
+    expect(out).toMatch(/^ {2}3 \| feeds: .*\n {2} {2}\| +\^+$/m);
+  });
+
+  test("--format github annotates lines", async () => {
+    const { status, out } = await backmix(["check", "broken.yaml", "--format", "github"], { files });
+    expect(status).toBe(1);
+    expect(out).toMatch(
+      /^::error file=broken\.yaml,line=3,endLine=3,col=\d+,endColumn=\d+,title=share-sum::.*110 %25.*; fix: /,
+    );
+  });
+
+  test("--format json is --json", async () => {
+    const { out } = await backmix(["check", "tank.yaml", "--format", "json"], { files });
+    expect(at(JSON.parse(out), "files.0.ok")).toBe(true);
+  });
+});
+
+describe("draw", () => {
+  test("prints an SVG, or writes it", async () => {
+    const { out } = await backmix(["draw", "vessel.yaml"], { files });
+    expect(out).toMatch(/^<svg [\s\S]*<\/svg>\n$/);
+    const { status, written } = await backmix(["draw", "vessel.yaml", "-o", "out/vessel.svg"], { files });
+    expect(status).toBe(0);
+    expect(written.get("out/vessel.svg")).toBe(out);
+  });
+
+  test("a page stands by itself", async () => {
+    const { written } = await backmix(["draw", "vessel.yaml", "-o", "vessel.html"], { files });
+    expect(written.get("vessel.html")).toMatch(/^<!doctype html>[\s\S]*<svg [\s\S]*<\/html>\n$/);
+  });
+
+  test("other values give another picture", async () => {
+    const plain = await backmix(["draw", "vessel.yaml"], { files });
+    const set = await backmix(["draw", "vessel.yaml", "--set", "bypass=40 %"], { files });
+    expect(set.out).not.toBe(plain.out);
+    expect(set.out).toMatch(/feed to product 4\sL\/min/);
+  });
+});
