@@ -3,8 +3,7 @@ import type { Network } from "../model/network.js";
 import type { Report } from "../problems/report.js";
 import { nearest } from "../text/nearest.js";
 import type { Span } from "../text/source.js";
-import { describeDimension, exampleFor, nameDimension } from "../units/describe.js";
-import { sameDimension } from "../units/dimension.js";
+import { sameKind } from "./same-kind.js";
 
 /** Does a duty fit a network: are its feeds, places and constants there, and does it say what every feed brings? */
 export function checkDuty(network: Network, duty: Duty, report: Report): void {
@@ -24,8 +23,10 @@ export function checkDuty(network: Network, duty: Duty, report: Report): void {
   const members = network.compartments.flatMap(({ name, counts }) =>
     Array.from({ length: counts.repeat ?? 0 }, (_, i) => `${name}.${i + 1}`),
   );
-  for (const { at, place } of duty.report) {
-    if (at !== undefined) look(at, place, "outlet, compartment or feed", [...places, ...members]);
+  const outlets = network.outlets.map((o) => o.name);
+  for (const { at, place, what } of duty.report) {
+    if (at !== undefined && what === "tracer-time") look(at, place, "outlet", outlets);
+    else if (at !== undefined) look(at, place, "outlet, compartment or feed", [...places, ...members]);
   }
 }
 
@@ -40,12 +41,6 @@ function checkSettings(
   for (const [name, { at, value }] of duty.settings) {
     if (!look(name, at, "constant", names)) continue;
     const wanted = own.find((n) => n.name === name)?.value.dimension;
-    if (!wanted || sameDimension(wanted, value.dimension)) continue;
-    report("wrong-dimension", value.at, {
-      text: value.at.source.text.slice(value.at.from, value.at.to),
-      got: nameDimension(value.dimension),
-      wanted: describeDimension(wanted),
-      example: exampleFor(wanted),
-    });
+    if (wanted) sameKind(wanted, value, report);
   }
 }

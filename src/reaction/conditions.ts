@@ -20,7 +20,7 @@ export interface Conditions {
 
 /** A quantity that a duty rests on, and how well it is known: what an interval has to carry. */
 export interface DutyInput {
-  /** As in `DutySettings`. */
+  /** As in `DutySettings`; flows (`feed.flow`) and values of the network as `compile` takes them. */
   readonly name: string;
   readonly value: number;
   /** One standard deviation as declared, SI. */
@@ -64,7 +64,7 @@ export function constantsOf(chemistry: Chemistry, duty: Duty, settings: DutySett
   return env.slice(n);
 }
 
-/** Everything declared with a `±` that a prediction of this duty depends on, flows and network settings left out. */
+/** Everything that the duty and its chemistry declare with a `±`. */
 export function dutyInputs(chemistry: Chemistry | undefined, duty: Duty): DutyInput[] {
   const inputs: DutyInput[] = [];
   const add = (name: string, value: number, sd: number | undefined): void => {
@@ -80,6 +80,8 @@ export function dutyInputs(chemistry: Chemistry | undefined, duty: Duty): DutyIn
       add(name, numbers[k], (otherwise ?? value).sd?.(otherwise ? [] : env));
     });
   }
+  for (const [feed, { value }] of duty.flows) add(`${feed}.flow`, value.of([]), value.sd?.([]));
+  for (const [name, { value }] of duty.settings) add(name, value.of([]), value.sd?.([]));
   for (const [feed, { species }] of duty.feeds) {
     for (const [name, { value }] of species) add(`${feed}.${name}`, value.of([]), value.sd?.([]));
   }

@@ -11,6 +11,13 @@ export interface Premises {
   readonly says: string;
 }
 
+/** Where no bound could be computed. */
+export const unknownPremises: Premises = {
+  bound: "not checked",
+  rate: "not checked",
+  says: "The bounds were not computed: a rate law asks for its reactant even when that has run out (zero order), or is too steep.",
+};
+
 const samples = 200;
 
 /**

@@ -33,7 +33,7 @@ export interface Sketch {
 
 /** A plant from a sketch. Flows must balance: it is not checked. */
 export function plantOf({ cells = {}, tubes = {}, links }: Sketch): Plant {
-  const names = [...new Set(links.flatMap(([a, b]): string[] => [a, b]))];
+  const names = [...new Set(links.flatMap((link) => link.slice(0, 2) as string[]))];
   const index = new Map(names.map((name, i) => [name, i]));
   const node = (name: string): number => index.get(name) as number;
   const from = Int32Array.from(links, ([a]) => node(a));
