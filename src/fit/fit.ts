@@ -8,12 +8,14 @@ import { estimatesOf } from "./estimates.js";
 import { findingsOf } from "./findings.js";
 import type { ForwardModel } from "./forward.js";
 import { networkModel } from "./network-model.js";
+import { countOf, thinned } from "./observations.js";
 import { prepare } from "./prepare.js";
-import { problemWith } from "./problem.js";
+import { type Problem as LinearProblem, problemWith } from "./problem.js";
 import type { Fit, FittedReading, FoundOptimum } from "./result.js";
-import { type SearchResult, searchFrom, type Watch } from "./search.js";
+import { descend, fully, type SearchResult, searchFrom, type Watch } from "./search.js";
 import { type Settled, settle } from "./settle.js";
 import { type Setup, valuesAt } from "./setup.js";
+import type { StartPlan } from "./starts.js";
 import { fittedCurve, weightsFor } from "./weights.js";
 
 export interface FitOptions {
@@ -65,13 +67,27 @@ export function fitWith(
   }
   const file = Float64Array.from(setup.coordinates, (c) => c.fromSi(c.start));
   const plan = { others: options.starts, seed: options.seed ?? 1 };
-  const found = searchFrom(problem, file, plan, watch);
+  const found = search(setup, problem, file, plan, watch);
   const settled = found.best && settle(setup, weights, problem, found.best, watch);
   if (!settled) {
     report("no-start", network.at, { tried: setup.cost.evaluations });
     return { fit: undefined, problems };
   }
   return { fit: resultOf(setup, settled, found), problems };
+}
+
+/** Points that the search for the right valley looks at; the last descent takes them all. */
+const searchPoints = 2000;
+
+function search(setup: Setup, problem: LinearProblem, file: Float64Array, plan: StartPlan, watch: Watch): SearchResult {
+  const blocks = thinned(setup.blocks, searchPoints);
+  if (blocks === setup.blocks) return searchFrom(problem, file, plan, watch);
+  const coarse: Setup = { ...setup, blocks, observations: countOf(blocks) };
+  const found = searchFrom(problemWith(coarse, weightsFor(coarse).weight), file, plan, watch);
+  if (!found.best) return found;
+  const best = { ...descend(problem, found.best.x, fully, watch), reached: found.best.reached };
+  const others = found.optima.slice(1).map((o) => ({ ...o, sum: problem.evaluate(o.x)?.ofAll ?? Infinity }));
+  return { best, optima: [best, ...others], cancelled: watch.cancelled() };
 }
 
 function resultOf(setup: Setup, settled: Settled, found: SearchResult): Fit {

@@ -74,3 +74,19 @@ function keptPoints(reading: Reading): { time: Float64Array; measured: Float64Ar
 
 /** Number of points of all blocks. */
 export const countOf = (blocks: readonly Block[]): number => blocks.reduce((n, b) => n + b.time.length, 0);
+
+/**
+ * The same blocks with at most about `most` points in all, evenly picked: enough to find where the optimum lies, not to say how
+ * well it is known. The blocks themselves where there are no more.
+ */
+export function thinned(blocks: readonly Block[], most: number): readonly Block[] {
+  const stride = Math.ceil(countOf(blocks) / most);
+  if (stride <= 1) return blocks;
+  let from = 0;
+  return blocks.map((b) => {
+    const kept = (_: number, i: number): boolean => i % stride === stride >> 1 || b.time.length < 2 * stride;
+    const thin = { ...b, from, time: b.time.filter(kept), measured: b.measured.filter(kept) };
+    from += thin.time.length;
+    return thin;
+  });
+}

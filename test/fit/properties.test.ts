@@ -158,4 +158,17 @@ outlets: [out]
     // Binomial(24, 0.95): 19 or fewer has probability 0.6 %.
     expect(inside.filter(Boolean).length).toBeGreaterThan(19);
   });
+
+  test("a long log: the search on part of it, the answer from all of it", () => {
+    const dense = (count: number) => fitted(network, [trial("dense", 10, 8, count, 45 / count)], { starts: 2 });
+    const [some, all] = [dense(600), dense(5400)];
+    expect(all.observations).toBe(5400);
+    for (const name of names) {
+      const p = parameterOf(all, name);
+      expect(Math.abs(p.value - truth[name]) / (p.standardError ?? NaN), name).toBeLessThan(4);
+      const ratio = (parameterOf(some, name).standardError ?? NaN) / (p.standardError ?? NaN);
+      expect(ratio / 3, name).toBeGreaterThan(0.7);
+      expect(ratio / 3, name).toBeLessThan(1.4);
+    }
+  });
 });
