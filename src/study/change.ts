@@ -7,7 +7,10 @@ import { child, entriesOf, type MapNode } from "../read/tree.js";
 
 /** A rival with a change laid over it, or the reason why it cannot be. */
 export type Changed =
-  | { readonly network: Network; /** Names that the change sets: their fitted values no longer count. */ readonly sets: ReadonlySet<string> }
+  | {
+      readonly network: Network /** Names that the change sets: their fitted values no longer count. */;
+      readonly sets: ReadonlySet<string>;
+    }
   | { readonly skipped: string };
 
 /** Applies a change to a rival. What names something that the rival lacks is skipped, with the reason in words. */
@@ -19,7 +22,9 @@ export function applyChange(rival: Rival, change: ChangeDocument): Changed {
     const first = problems.find((p) => p.severity === "error");
     return { skipped: first ? first.message : "the changed network is not complete" };
   }
-  const sets = new Set(["parameters", "constants"].flatMap((key) => entriesOf(child(change.change, key)).map((e) => e.key.text)));
+  const sets = new Set(
+    ["parameters", "constants"].flatMap((key) => entriesOf(child(change.change, key)).map((e) => e.key.text)),
+  );
   for (const { key, value } of entriesOf(child(change.change, "feeds"))) {
     if (child(value, "flow")) sets.add(`${key.text}.flow`);
   }
@@ -38,4 +43,9 @@ function lacks(base: MapNode, change: MapNode): string | undefined {
   return undefined;
 }
 
-const noun = { parameters: "the parameter", constants: "the constant", feeds: "the feed", compartments: "the compartment" } as const;
+const noun = {
+  parameters: "the parameter",
+  constants: "the constant",
+  feeds: "the feed",
+  compartments: "the compartment",
+} as const;

@@ -23,9 +23,7 @@ export function parameterDraws(
   const env = evaluateNames(network, fit.values);
   const named = new Map(network.names.map((n) => [n.name, n]));
   const known = fit.covariance.names.filter((_, i) => Number.isFinite(fit.covariance.rows[i][i]));
-  const factor = cholesky(
-    known.map((a) => known.map((b) => fit.covariance.rows[indexOf(fit, a)][indexOf(fit, b)])),
-  );
+  const factor = cholesky(known.map((a) => known.map((b) => fit.covariance.rows[indexOf(fit, a)][indexOf(fit, b)])));
   const blind = fit.covariance.names.filter((n) => !known.includes(n));
   const bounds = (name: string): readonly [number, number] => {
     const between = named.get(name)?.between;

@@ -1,0 +1,84 @@
+import type { Plant } from "../compile/plant.js";
+import type { MomentsResult } from "../data/moments.js";
+import type { Fit } from "../fit/result.js";
+import type { Duty } from "../model/duty.js";
+import type { ChangeDocument, Rival, Study } from "../model/study.js";
+import type { Trial } from "../model/trial.js";
+import type { Problem } from "../problems/problem.js";
+import type { SteadyState } from "../reaction/steady.js";
+import type { Unit } from "../units/unit.js";
+import type { Standing } from "./rank.js";
+
+/** Everything that a study found out. SI, with units for people beside. */
+export interface StudyResult {
+  readonly study: Study;
+  /** Best first; rivals without a fit last. */
+  readonly ranking: readonly Ranked[];
+  /** The log of each trial alone, no model. */
+  readonly readings: readonly { readonly trial: Trial; readonly moments: MomentsResult }[];
+  /** Every duty for the best rival, and for the others that survive. */
+  readonly predictions: readonly Prediction[];
+  readonly changes: readonly ChangeOutcome[];
+  /** Draws that intervals rest on. */
+  readonly draws: number;
+  readonly stopped: "cancelled" | undefined;
+  readonly converged: boolean;
+}
+
+export interface Ranked {
+  readonly rival: Rival;
+  readonly fit: Fit | undefined;
+  /** Why there is no fit. */
+  readonly problems: readonly Problem[];
+  readonly standing: Standing;
+  readonly survives: boolean;
+  /** At the fitted values. */
+  readonly plant: Plant | undefined;
+}
+
+/** One figure of one duty by one rival. */
+export interface Prediction {
+  readonly rival: Rival;
+  readonly duty: Duty;
+  readonly name: string;
+  readonly value: number;
+  readonly unit: Unit;
+  /** 2.5 to 97.5 % of the draws; undefined where too few draws gave a figure. */
+  readonly interval95: readonly [number, number] | undefined;
+  readonly bounds: Bounds | undefined;
+  readonly steady: SteadyState;
+}
+
+/** What the same curve would give with mixing as late or as early as it allows. */
+export interface Bounds {
+  readonly segregated: number;
+  readonly maximumMixedness: number;
+  /** 0 at complete segregation, 1 at maximum mixedness; undefined where they coincide. */
+  readonly position: number | undefined;
+  /** Whether they bound, in a sentence. */
+  readonly says: string;
+  readonly apply: "yes" | "no" | "not checked";
+}
+
+/** What a change does to one figure of one rival, by draws shared with the present vessel. */
+export interface ChangeOutcome {
+  readonly change: ChangeDocument;
+  readonly rival: Rival;
+  /** Why it was left out for this rival; then there are no figures. */
+  readonly skipped: string | undefined;
+  readonly plant: Plant | undefined;
+  readonly figures: readonly ChangedFigure[];
+}
+
+export interface ChangedFigure {
+  readonly duty: Duty;
+  readonly name: string;
+  readonly unit: Unit;
+  readonly before: number;
+  readonly value: number;
+  readonly interval95: readonly [number, number] | undefined;
+  /** Of the difference to the present vessel, draw by draw. */
+  readonly difference95: readonly [number, number] | undefined;
+  /** Share of the draws in which the figure is better; undefined where better has no direction. */
+  readonly probabilityBetter: number | undefined;
+}

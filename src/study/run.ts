@@ -1,0 +1,85 @@
+import { compile } from "../compile/compile.js";
+import { readMoments } from "../data/moments.js";
+import { type FitOptions, fit } from "../fit/fit.js";
+import type { Rival, Study } from "../model/study.js";
+import { changeOutcomes } from "./compare.js";
+import { drawsOf, type RivalDraws } from "./draws-of.js";
+import { predictDuty } from "./predict.js";
+import { standings, survives } from "./rank.js";
+import type { Ranked, StudyResult } from "./result.js";
+import { momentsFacts } from "./trial-facts.js";
+
+export interface StudyOptions {
+  /** Draws behind every interval; default 200. */
+  readonly draws?: number;
+  readonly cancelled?: () => boolean;
+  readonly progress?: (what: StudyProgress) => void;
+  /** Of each fit; default as the fit chooses. */
+  readonly starts?: number;
+}
+
+export interface StudyProgress {
+  /** "fitting", "predicting". */
+  readonly stage: string;
+  readonly what: string;
+  /** 0 to 1 over the whole study. */
+  readonly done: number;
+}
+
+const fewestDraws = 20;
+
+/**
+ * The whole job: fits every rival to all trials at once, ranks them, predicts every duty for those that survive, and
+ * compares the changes. Pure and deterministic for a given study; a cancelled run gives what is known so far.
+ */
+export function runStudy(study: Study, options: StudyOptions = {}): StudyResult {
+  const cancelled = options.cancelled ?? (() => false);
+  const tell = options.progress ?? (() => {});
+  const count = Math.max(fewestDraws, options.draws ?? 200);
+  const readings = study.trials.map((trial) => ({ trial, moments: readMoments(trial, momentsFacts(study, trial)) }));
+  const fitted = study.rivals.map((rival, i): Omit<Ranked, "standing" | "survives"> => {
+    tell({ stage: "fitting", what: rival.network.title, done: (0.8 * i) / study.rivals.length });
+    return fitRival(study, rival, options, cancelled);
+  });
+  const standing = standings(fitted.map((f) => f.fit));
+  const ranking = fitted
+    .map((f, i): Ranked => ({ ...f, standing: standing[i], survives: f.fit !== undefined && survives(standing[i]) }))
+    .sort((a, b) => a.standing.difference - b.standing.difference);
+  const survivors = ranking.filter((r) => r.survives && r.plant);
+  const draws = new Map<Rival, RivalDraws>();
+  for (const r of survivors) if (!cancelled()) draws.set(r.rival, drawsOf(r, count, study.seed));
+  const alive = survivors.filter((r) => draws.has(r.rival));
+  const predictions = alive.flatMap((r, i) =>
+    study.duties.flatMap((duty) => {
+      tell({ stage: "predicting", what: duty.title, done: 0.8 + (0.1 * i) / alive.length });
+      return cancelled() ? [] : predictDuty(r, duty, draws.get(r.rival) as RivalDraws, study.seed);
+    }),
+  );
+  const changes = alive.flatMap((r, i) =>
+    study.changes.flatMap((change) => {
+      tell({ stage: "comparing", what: change.title, done: 0.9 + (0.1 * i) / alive.length });
+      return cancelled() ? [] : [changeOutcomes(r, change, study.duties, draws.get(r.rival) as RivalDraws, study.seed)];
+    }),
+  );
+  return {
+    study,
+    ranking,
+    readings,
+    predictions,
+    changes,
+    draws: Math.min(count, ...[...draws.values()].map((d) => d.settings.length)),
+    stopped: cancelled() ? "cancelled" : undefined,
+    converged: ranking.every((r) => r.fit?.converged ?? false),
+  };
+}
+
+function fitRival(study: Study, rival: Rival, options: StudyOptions, cancelled: () => boolean) {
+  const fitOptions: FitOptions = {
+    seed: study.seed,
+    cancelled,
+    ...(options.starts === undefined ? {} : { starts: options.starts }),
+  };
+  const outcome = fit(rival.network, study.trials, fitOptions);
+  const plant = outcome.fit && compile(rival.network, outcome.fit.values).plant;
+  return { rival, fit: outcome.fit, problems: outcome.problems, plant };
+}

@@ -1,0 +1,14 @@
+const fewest = 20;
+
+/** 2.5 and 97.5 % points of a sample, between neighbours by proportion; undefined where fewer than 20 numbers are finite. */
+export function interval95(sample: readonly number[]): readonly [number, number] | undefined {
+  const sorted = sample.filter(Number.isFinite).sort((a, b) => a - b);
+  return sorted.length < fewest ? undefined : [quantile(sorted, 0.025), quantile(sorted, 0.975)];
+}
+
+function quantile(sorted: readonly number[], p: number): number {
+  const at = p * (sorted.length - 1);
+  const low = Math.floor(at);
+  const high = Math.min(low + 1, sorted.length - 1);
+  return sorted[low] + (at - low) * (sorted[high] - sorted[low]);
+}
