@@ -16,7 +16,7 @@ export interface MixingBounds {
   readonly premises: Premises;
 }
 
-const tolerance = { relative: 1e-11, absolute: 1e-14, maxSteps: 1_000_000 };
+const tolerance = { relative: 1e-11, absolute: 1e-14, maxSteps: 20_000 };
 
 /**
  * Complete segregation and maximum mixedness for a whole chemistry at the mean composition of the feeds.

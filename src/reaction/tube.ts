@@ -2,7 +2,7 @@ import { integrate } from "../numerics/integrate.js";
 import type { Kinetics } from "./kinetics.js";
 
 /** Tolerances along a tube, in scaled concentrations. */
-const tolerance = { relative: 1e-12, absolute: 1e-16, maxSteps: 100_000 };
+const tolerance = { relative: 1e-12, absolute: 1e-16, maxSteps: 20_000 };
 /** Places along a tube at which it is seen whether something has run out. */
 const looks = 32;
 
