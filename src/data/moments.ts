@@ -62,10 +62,8 @@ export function readCurve(
   const known = response.tail.is === "closed" || response.tail.is === "exponential";
   const error = (gradient: Float64Array, beyond: number): number =>
     Math.hypot(errorOf(gradient, response, curve), beyond);
-  const tailDoubt =
-    response.tail.is === "exponential" ? Math.hypot(response.tail.levelError, response.tail.rateError) : 0;
-  const meanError = error(found.gradient.mean, Math.abs(found.tail.mean * found.mean) * tailDoubt);
-  const varianceError = error(found.gradient.variance, Math.abs(found.tail.variance * found.variance) * 2 * tailDoubt);
+  const meanError = error(found.gradient.mean, found.tailError.mean);
+  const varianceError = error(found.gradient.variance, found.tailError.variance);
   const skew = variance > 0 ? third / variance ** 1.5 : undefined;
   const skewGradient = found.gradient.third.map(
     (g, i) => g / variance ** 1.5 - (1.5 * third * found.gradient.variance[i]) / variance ** 2.5,

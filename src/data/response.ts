@@ -1,5 +1,5 @@
 import type { CleanCurve } from "./clean.js";
-import { type Tail, tailMoments, tailOf } from "./tail.js";
+import { type Tail, tailError, tailMoments, tailOf } from "./tail.js";
 import { type Rule, weights } from "./weights.js";
 
 /**
@@ -58,6 +58,8 @@ export interface RawMoments {
   /** Third central moment, s^3. */
   readonly third: number;
   readonly gradient: { readonly mean: Float64Array; readonly variance: Float64Array; readonly third: Float64Array };
+  /** One standard error of mean and variance from the doubt in the tail alone. */
+  readonly tailError: { readonly mean: number; readonly variance: number };
   /** What the extrapolated tail makes of area, mean and variance: its share of each (variance: about the final mean). */
   readonly tail: { readonly area: number; readonly mean: number; readonly variance: number };
 }
@@ -98,6 +100,14 @@ function densityMoments({ time, value, weight, tail }: Response): RawMoments | u
       variance: by((off) => off * off - variance),
       third: by((off) => off ** 3 - 3 * variance * off - third),
     },
+    tailError: {
+      mean: tailError(tail, ([a, b]) => (m1 + b) / (m0 + a)),
+      variance: tailError(tail, (raw) => {
+        const [a2] = aboutMean(raw, mean);
+        const moved = (m1 + raw[1]) / (m0 + raw[0]) - mean;
+        return (s2 + a2) / (m0 + raw[0]) - moved * moved;
+      }),
+    },
     tail: { area: beyond[0] / area, mean: beyond[1] / (area * mean), variance: tail2 / (area * variance) },
   };
 }
@@ -127,6 +137,10 @@ function washoutMoments({ time, value, weight, tail }: Response): RawMoments | u
       mean: by(() => 1),
       variance: by((off) => 2 * off),
       third: by((off) => 3 * (off * off - variance)),
+    },
+    tailError: {
+      mean: tailError(tail, ([a]) => raw[0] + a),
+      variance: tailError(tail, ([a, b]) => raw[1] + 2 * b - (raw[0] + a) ** 2),
     },
     tail: {
       area: tail.is === "exponential" ? tail.level : 0,

@@ -2,7 +2,7 @@ import fc from "fast-check";
 import { describe, expect, test } from "vitest";
 import { collector } from "../../src/problems/report.js";
 import { clockFormat } from "../../src/read/clock.js";
-import { cellSpan, readCsv, separatorOf } from "../../src/read/csv.js";
+import { cellSpan, plainRows, quotedRows, readCsv, separatorOf } from "../../src/read/csv.js";
 import { decodeText } from "../../src/read/decode.js";
 import { readSeries, type SeriesSpec } from "../../src/read/series.js";
 import { placeOf } from "../../src/text/source.js";
@@ -209,4 +209,19 @@ test("a separator inside quotes cuts nothing", () => {
   const table = readCsv(source, {}, report);
   expect(table?.rows[1].cells).toEqual(["1,5", "2"]);
   if (table) expect(placeOf(cellSpan(table, table.rows[1], 1))).toMatchObject({ line: 2, column: 7 });
+});
+
+test("the quick way and the general way cut a table without quotation marks alike", () => {
+  const text = fc.array(fc.constantFrom("a", "1,5", " ", "#", ";", "\t", "\n", "\r\n", "\r", "-2.5"), {
+    maxLength: 60,
+  });
+  fc.assert(
+    fc.property(text, fc.constantFrom(";", ",", "\t"), (pieces, separator) => {
+      const source = { path: "x.csv", text: pieces.join("") };
+      const filled = (rows: ReturnType<typeof plainRows> | undefined) =>
+        rows?.filter((r) => r.cells.some((c) => c !== ""));
+      const { report } = collector();
+      expect(filled(plainRows(source.text, separator))).toEqual(filled(quotedRows(source, separator, report)));
+    }),
+  );
 });
