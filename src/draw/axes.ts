@@ -23,7 +23,8 @@ export function linearAxis(values: Iterable<number>, range: readonly [number, nu
 /** Decades from the largest value down, at most `decades`; smaller values lie on the lower end. */
 export function logAxis(values: Iterable<number>, range: readonly [number, number], decades = 4): Axis {
   const positive = [...values].filter((v) => v > 0 && Number.isFinite(v));
-  const high = 10 ** Math.ceil(Math.log10(Math.max(1e-300, ...positive)));
+  const most = positive.reduce((a, b) => Math.max(a, b), 1e-300);
+  const high = 10 ** Math.ceil(Math.log10(most));
   const least = positive.reduce((a, b) => Math.min(a, b), high);
   const low = Math.max(10 ** Math.floor(Math.log10(least)), high / 10 ** decades);
   const scale = scaleLog([low === high ? high / 10 : low, high], range);
@@ -47,7 +48,7 @@ export function bottomAxis(axis: Axis, plot: Box, words: string, bare = false): 
     parts.push(text(x, y + 16, label, "quiet", "middle"));
     free = x + half;
   }
-  if (!bare) parts.push(text(plot.x + plot.width, y + 32, words, "quiet", "end"));
+  if (!bare && words !== "") parts.push(text(plot.x + plot.width, y + 32, words, "quiet", "end"));
   return parts.join("");
 }
 
@@ -58,7 +59,7 @@ export function leftAxis(axis: Axis, plot: Box, words: string): Svg {
     text(plot.x - 6, axis.at(tick) + 3.5, formatNumber(tick), "quiet", "end"),
   ]);
   const wide = leftRoom(axis) - 6;
-  return [...parts, text(plot.x - wide, plot.y - 9, words, "quiet")].join("");
+  return [...parts, words === "" ? "" : text(plot.x - wide, plot.y - 9, words, "quiet")].join("");
 }
 
 /** Room that the numbers left of a plot need, px. */

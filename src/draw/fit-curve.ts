@@ -3,12 +3,12 @@ import { textWidth } from "../svg/measure.js";
 import { type Box, px, type Svg } from "../svg/svg.js";
 import { formatNumber } from "../units/format.js";
 import { type Axis, bottomAxis, leftAxis, leftRoom, linearAxis, logAxis } from "./axes.js";
-import { caption, drawCaption } from "./caption.js";
+import { caption, drawCaption, type Words } from "./caption.js";
 import { Clutter } from "./clutter.js";
 import { separated } from "./heights.js";
 import { placeAt } from "./line-labels.js";
 import { type PictureOptions, picture } from "./picture.js";
-import { area, points, stems, trace } from "./traces.js";
+import { area, largest, points, stems, trace } from "./traces.js";
 
 /** Measured and fitted curve of one or more readings, each above its residuals. All arrays of a reading are of one length. */
 export interface FitCurve {
@@ -71,40 +71,43 @@ function drawPanel(
   width: number,
   log: boolean,
 ): { svg: Svg; bottom: number } {
-  const head = caption([{ words: r.source ? `${r.label}, from ${r.source}` : r.label, style: "quiet" }], 0, top);
   const values = [...Array.from(r.measured), ...Array.from(r.fitted)];
   const yRange = [top + 42 + plotHeight, top + 42] as const;
-  const ay = log
-    ? logAxis(values, yRange)
-    : linearAxis([...values, 0, 1.06 * Math.max(0, ...values.filter(Number.isFinite))], yRange, 5, false);
-  const largest = Math.max(...Array.from(r.residual, Math.abs).filter(Number.isFinite), 0) || 1;
+  const ay = log ? logAxis(values, yRange) : linearAxis([...values, 0, 1.06 * largest(values, 0)], yRange, 5, false);
+  const worst = largest(Array.from(r.residual, Math.abs), 0) || 1;
   const stripTop = top + 42 + plotHeight + 20;
-  const ar = linearAxis([-largest, largest], [stripTop + stripHeight, stripTop], 2, false);
-  const strip3 = { ...ar, ticks: [-largest, 0, largest].map((v) => Number(v.toPrecision(2))) };
-  const left = Math.max(leftRoom(ay), leftRoom(strip3));
+  const ar = linearAxis([-worst, worst], [stripTop + stripHeight, stripTop], 2, false);
+  const residualAxis = { ...ar, ticks: [-worst, 0, worst].map((v) => Number(v.toPrecision(2))) };
+  const left = Math.max(leftRoom(ay), leftRoom(residualAxis));
   const plot: Box = { x: left, y: top + 42, width: width - left, height: plotHeight };
   const strip: Box = { ...plot, y: stripTop, height: stripHeight };
-  const ax = linearAxis(r.time as Iterable<number> & ArrayLike<number>, [plot.x, plot.x + plot.width], 8, false);
+  const ax = linearAxis(Array.from(r.time), [plot.x, plot.x + plot.width], 8, false);
   const floor = log ? ay.domain[0] * (1 - 1e-12) : Number.NEGATIVE_INFINITY;
   const measured = points(r.time, r.measured, ax, ay, "point", floor);
-  const hidden = log && measured.hidden > 0 ? `, ${measured.hidden} at or below the axis not shown` : "";
   const clutter = clutterOf(r, ax, ay);
+  const leftOut = rug(r, ax, plot, clutter);
+  const name = (words: Words, of: ArrayLike<number>): Svg | undefined =>
+    placeAt(words, besideLine(r.time, of, ax, ay), clutter, plot);
+  const names = [
+    name({ words: "fitted", style: "name" }, r.fitted),
+    name({ words: `measured, ${r.time.length} points`, style: "quiet" }, r.measured),
+  ];
+  const says = [
+    r.source ? `${r.label}, from ${r.source}` : r.label,
+    // where the plot has no room for names, they stand above it
+    ...(names.includes(undefined) ? ["circles measured, line fitted"] : []),
+    ...(log && measured.hidden > 0 ? [`${measured.hidden} points at or below the axis not shown`] : []),
+  ].join("; ");
   const svg = [
-    drawCaption(head),
+    drawCaption(caption([{ words: says, style: "quiet" }], 0, top)),
     leftAxis(ay, plot, curve.value),
     r.band ? area(r.time, r.band.low, r.band.high, ax, ay) : "",
     measured.svg,
     trace(r.time, r.fitted, ax, ay, "curve", floor),
-    rug(r, ax, plot, clutter),
-    placeAt({ words: "fitted", style: "name" }, besideLine(r.time, r.fitted, ax, ay), clutter, plot) ?? "",
-    placeAt(
-      { words: `measured, ${r.time.length} points${hidden}`, style: "quiet" },
-      besideLine(r.time, r.measured, ax, ay),
-      clutter,
-      plot,
-    ) ?? "",
+    leftOut,
+    ...names.map((n) => n ?? ""),
     bottomAxis(ax, plot, "", true),
-    leftAxis({ ...strip3, ticks: strip3.ticks.filter((t) => t !== 0) }, strip, ""),
+    leftAxis({ ...residualAxis, ticks: residualAxis.ticks.filter((t) => t !== 0) }, strip, ""),
     line(strip.x, ar.at(0), strip.x + strip.width, ar.at(0), "axis"),
     stems(r.time, r.residual, ax, ar),
     drawCaption(caption([{ words: "residual", style: "quiet" }], strip.x + strip.width, strip.y - 16, "end")),
@@ -140,6 +143,7 @@ function clutterOf(r: FitReading, ax: Axis, ay: Axis): Clutter {
     for (let k = 0; k < r.time.length; k++) {
       if (!Number.isFinite(line[k])) continue;
       const here = { x: ax.at(r.time[k]), y: ay.at(line[k]) };
+      if (before && Math.abs(here.x - before.x) + Math.abs(here.y - before.y) < 1) continue;
       const joined = line === r.fitted && before ? before : here;
       const [x, y] = [Math.min(here.x, joined.x), Math.min(here.y, joined.y)];
       clutter.add({

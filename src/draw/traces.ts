@@ -2,7 +2,10 @@ import { path } from "../svg/marks.js";
 import { px, type Svg } from "../svg/svg.js";
 import type { Axis } from "./axes.js";
 
-/** A line through points; breaks where a value is no number. `floor`: values at or below it break the line too (log axes). */
+/** More points than this are drawn smaller, and only where they show: loggers give hundreds of thousands. */
+const many = 1200;
+
+/** A line through points; breaks where a value is no number, or lies at or below `floor` (log axes). */
 export function trace(
   x: ArrayLike<number>,
   y: ArrayLike<number>,
@@ -12,23 +15,21 @@ export function trace(
   floor = Number.NEGATIVE_INFINITY,
 ): Svg {
   let d = "";
-  let open = false;
-  let last = "";
+  let last: { x: number; y: number } | undefined;
   for (let k = 0; k < x.length; k++) {
-    const shown = Number.isFinite(y[k]) && y[k] > floor && x[k] >= ax.domain[0] && x[k] <= ax.domain[1];
-    if (!shown) {
-      open = false;
+    if (!shown(x[k], y[k], ax, floor)) {
+      last = undefined;
       continue;
     }
-    const spot = `${px(ax.at(x[k]))} ${px(ay.at(y[k]))}`;
-    if (!open || spot !== last) d += (open ? "L" : "M") + spot;
-    last = spot;
-    open = true;
+    const here = { x: ax.at(x[k]), y: ay.at(y[k]) };
+    if (last && k < x.length - 1 && Math.abs(here.x - last.x) + Math.abs(here.y - last.y) < 0.3) continue;
+    d += `${last ? "L" : "M"}${px(here.x)} ${px(here.y)}`;
+    last = here;
   }
   return d === "" ? "" : path(d, className);
 }
 
-/** Measured points, small and open; where they are dense, dots. Returns how many could not be shown. */
+/** Measured points, small and open; where they are dense, dots. `hidden`: how many the axes cannot show. */
 export function points(
   x: ArrayLike<number>,
   y: ArrayLike<number>,
@@ -37,38 +38,59 @@ export function points(
   className: string,
   floor = Number.NEGATIVE_INFINITY,
 ): { svg: Svg; hidden: number } {
-  const r = x.length > 1200 ? 0.8 : x.length > 250 ? 1.4 : 2.2;
+  const r = x.length > many ? 0.8 : x.length > 250 ? 1.4 : 2.2;
+  const taken = new Set<number>();
   let d = "";
   let hidden = 0;
   for (let k = 0; k < x.length; k++) {
-    if (!Number.isFinite(y[k]) || y[k] <= floor || x[k] < ax.domain[0] || x[k] > ax.domain[1]) {
+    if (!shown(x[k], y[k], ax, floor)) {
       hidden++;
       continue;
     }
+    const here = { x: ax.at(x[k]), y: ay.at(y[k]) };
+    const spot = Math.round(here.x * 2) * 65536 + Math.round(here.y * 2);
+    if (x.length > many && taken.has(spot)) continue;
+    taken.add(spot);
     const arc = `a${px(r)} ${px(r)} 0 1 0`;
-    d += `M${px(ax.at(x[k]) - r)} ${px(ay.at(y[k]))}${arc} ${px(2 * r)} 0${arc} ${px(-2 * r)} 0`;
+    d += `M${px(here.x - r)} ${px(here.y)}${arc} ${px(2 * r)} 0${arc} ${px(-2 * r)} 0`;
   }
   return { svg: d === "" ? "" : path(d, className), hidden };
 }
 
 /** The area between two lines over the same x. */
 export function area(x: ArrayLike<number>, low: ArrayLike<number>, high: ArrayLike<number>, ax: Axis, ay: Axis): Svg {
-  let up = "";
-  let down = "";
+  const up: string[] = [];
+  const down: string[] = [];
+  let last = Number.NEGATIVE_INFINITY;
   for (let k = 0; k < x.length; k++) {
-    up += `${k === 0 ? "M" : "L"}${px(ax.at(x[k]))} ${px(ay.at(high[k]))}`;
-    down = `L${px(ax.at(x[k]))} ${px(ay.at(low[k]))}${down}`;
+    const at = ax.at(x[k]);
+    if (!Number.isFinite(low[k]) || !Number.isFinite(high[k]) || at - last < 0.3) continue;
+    up.push(`${px(at)} ${px(ay.at(high[k]))}`);
+    down.push(`${px(at)} ${px(ay.at(low[k]))}`);
+    last = at;
   }
-  return x.length === 0 ? "" : path(`${up}${down}Z`, "area");
+  return up.length === 0 ? "" : path(`M${[...up, ...down.reverse()].join("L")}Z`, "area");
 }
 
-/** Residuals as stems from zero. */
+/** Residuals as stems from zero; where they are dense, the lowest and highest of each half px. */
 export function stems(x: ArrayLike<number>, y: ArrayLike<number>, ax: Axis, ay: Axis): Svg {
-  const zero = px(ay.at(0));
-  let d = "";
+  const ends = new Map<number, { low: number; high: number }>();
   for (let k = 0; k < x.length; k++) {
-    if (Number.isFinite(y[k]) && x[k] >= ax.domain[0] && x[k] <= ax.domain[1])
-      d += `M${px(ax.at(x[k]))} ${zero}V${px(ay.at(y[k]))}`;
+    if (!shown(x[k], y[k], ax, Number.NEGATIVE_INFINITY)) continue;
+    const at = x.length > many ? Math.round(ax.at(x[k]) * 2) / 2 : ax.at(x[k]);
+    const known = ends.get(at);
+    ends.set(at, { low: Math.min(y[k], known?.low ?? 0), high: Math.max(y[k], known?.high ?? 0) });
   }
+  const d = [...ends].map(([at, { low, high }]) => `M${px(at)} ${px(ay.at(low))}V${px(ay.at(high))}`).join("");
   return d === "" ? "" : path(d, x.length > 250 ? "residual thin" : "residual");
 }
+
+/** The largest number among values; `least` where there is none. Safe for arrays of any length. */
+export function largest(values: Iterable<number>, least: number): number {
+  let most = least;
+  for (const v of values) if (Number.isFinite(v) && v > most) most = v;
+  return most;
+}
+
+const shown = (x: number, y: number, ax: Axis, floor: number): boolean =>
+  Number.isFinite(y) && y > floor && x >= ax.domain[0] && x <= ax.domain[1];

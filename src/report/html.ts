@@ -1,0 +1,66 @@
+import { escapeText, type Svg } from "../svg/svg.js";
+import { drawingDefinitions, drawingStyle } from "../svg/theme.js";
+import type { Figure } from "./input.js";
+
+/** A piece of HTML source. */
+export type Html = string;
+
+/** A table's column: its heading, and whether it holds numbers (set right, in tabular figures). */
+export interface Column {
+  readonly head: string;
+  readonly number?: boolean;
+}
+
+/** A cell: words, or words with a second, quieter line. */
+export type Cell = string | { readonly words: string; readonly under: string };
+
+/** A table with its caption; the first cell of a row is its heading. Nothing where there are no rows. */
+export function table(caption: string, columns: readonly Column[], rows: readonly (readonly Cell[])[]): Html {
+  if (rows.length === 0) return "";
+  const kind = (k: number): string => (columns[k]?.number ? ' class="number"' : "");
+  const head = columns.map((c, k) => `<th scope="col"${kind(k)}>${escapeText(c.head)}</th>`).join("");
+  const body = rows
+    .map((row) => {
+      const cells = row.map((cell, k) =>
+        k === 0 ? `<th scope="row">${cellWords(cell)}</th>` : `<td${kind(k)}>${cellWords(cell)}</td>`,
+      );
+      return `<tr>${cells.join("")}</tr>`;
+    })
+    .join("");
+  return `<div class="wide"><table><caption>${escapeText(caption)}</caption><thead><tr>${head}</tr></thead><tbody>${body}</tbody></table></div>`;
+}
+
+/** A section under a heading; left out where it has nothing to say. */
+export function section(id: string, heading: string, parts: readonly Html[]): Html {
+  const body = parts.join("");
+  return body === "" ? "" : `<section id="${id}"><h2>${escapeText(heading)}</h2>${body}</section>`;
+}
+
+export const paragraph = (words: string, kind?: string): Html =>
+  `<p${kind ? ` class="${kind}"` : ""}>${escapeText(words)}</p>`;
+
+export function list(items: readonly string[], ordered = false): Html {
+  if (items.length === 0) return "";
+  const tag = ordered ? "ol" : "ul";
+  return `<${tag}>${items.map((i) => `<li>${escapeText(i)}</li>`).join("")}</${tag}>`;
+}
+
+/** Terms with what they mean. */
+export function terms(pairs: readonly (readonly [term: string, says: string])[]): Html {
+  if (pairs.length === 0) return "";
+  return `<dl>${pairs.map(([t, s]) => `<dt>${escapeText(t)}</dt><dd>${escapeText(s)}</dd>`).join("")}</dl>`;
+}
+
+export const figure = ({ drawing, caption }: Figure): Html =>
+  `<figure>${onPage(drawing)}<figcaption>${escapeText(caption)}</figcaption></figure>`;
+
+/** A drawing without the style and definitions that all drawings of a page share (`sharedDrawing`). */
+const onPage = (drawing: Svg): Svg => drawing.replace(/<style>[^<]*<\/style>/, "").replace(drawingDefinitions, "");
+
+/** What all drawings of a page share, once: style, gradients, hatching. */
+export const sharedDrawing: Html = `<svg class="bm" width="0" height="0" style="position:absolute" aria-hidden="true"><style>${drawingStyle("auto")}</style>${drawingDefinitions}</svg>`;
+
+const cellWords = (cell: Cell): string =>
+  typeof cell === "string"
+    ? escapeText(cell)
+    : `${escapeText(cell.words)}<br><span class="under">${escapeText(cell.under)}</span>`;

@@ -1,0 +1,144 @@
+import type { Svg } from "../svg/svg.js";
+
+/** Everything a study's report says, in the units that people read. Sentences are ready to print, without a full stop where short. */
+export interface StudyReport {
+  readonly title: string;
+  /**
+   * The answer in about five lines: what is wrong with the vessel and how sure, what it makes now, the best change and
+   * what it would bring, the one test that would settle what is open.
+   */
+  readonly answer: readonly string[];
+  /** The vessel as fitted. */
+  readonly vessel?: Figure;
+  /** Measured beside fitted curves, rivals over the same points. */
+  readonly curves: readonly Figure[];
+  readonly data: readonly DataQuality[];
+  readonly findings: readonly ReportFinding[];
+  /** What one might expect but the data do not show. */
+  readonly notSupported: readonly string[];
+  readonly rivals: readonly Rival[];
+  /** "bypass and corner fit equally well": what these data cannot tell apart. */
+  readonly equals: readonly string[];
+  readonly parameters: readonly ReportParameter[];
+  /** Pairs that move together, most first. */
+  readonly correlations: readonly { readonly one: string; readonly other: string; readonly value: number }[];
+  readonly predictions: readonly Prediction[];
+  readonly changes: readonly Change[];
+  readonly assumptions: readonly string[];
+  readonly cautions: CautionTriggers;
+  /** What was tested: flows, temperatures, dates; one line each. */
+  readonly tested: readonly string[];
+  readonly provenance: Provenance;
+}
+
+/** A drawing with its caption; the drawing brings its own words for those who cannot see it. */
+export interface Figure {
+  readonly drawing: Svg;
+  readonly caption: string;
+}
+
+/** A number with its 95 % interval; `undefined` where the data cannot tell it. All in `unit`. */
+export interface Estimate {
+  readonly value: number | undefined;
+  readonly unit: string;
+  readonly low?: number | undefined;
+  readonly high?: number | undefined;
+}
+
+export interface DataQuality {
+  readonly trial: string;
+  readonly at: string;
+  readonly grade: string;
+  /** Reasons of the grade, with their numbers. */
+  readonly because: readonly string[];
+  /** Recovery, mean, t10 and the like. */
+  readonly figures: readonly { readonly name: string; readonly estimate: Estimate }[];
+  /** What each cleaning step left. Units in the order area, mean, variance, t10. */
+  readonly steps: readonly {
+    readonly name: string;
+    readonly area: number;
+    readonly mean: number;
+    readonly variance: number;
+    readonly t10: number;
+  }[];
+  readonly stepUnits: { readonly area: string; readonly time: string };
+}
+
+export interface ReportFinding {
+  readonly message: string;
+  readonly evidence: string;
+  readonly couldBe?: string;
+  readonly next?: string;
+}
+
+export interface Rival {
+  readonly network: string;
+  readonly freeParameters: number;
+  readonly aicc: number;
+  /** Akaike weight, 0 to 1. */
+  readonly weight: number;
+  /** Why it leads, or why it loses. */
+  readonly verdict: string;
+}
+
+export interface ReportParameter {
+  readonly name: string;
+  readonly about?: string;
+  readonly estimate: Estimate;
+  readonly atBound?: "lower" | "upper" | undefined;
+}
+
+export interface Prediction {
+  readonly duty: string;
+  /** "conversion of A" */
+  readonly name: string;
+  readonly estimate: Estimate;
+  /** The same at full segregation and at maximum mixedness, in the same unit; left out where the bounds do not apply. */
+  readonly bounds?: { readonly segregated: number; readonly maximumMixedness: number };
+  /** Why there are no bounds, or what follows from where the value lies between them. */
+  readonly boundsSay?: string;
+  /** Which input holds most of the variance: "k2 (71 %)". */
+  readonly drivenBy?: string;
+}
+
+export interface Change {
+  readonly name: string;
+  /** The compared quantity and duty: "conversion of A, normal production". */
+  readonly quantity: string;
+  readonly estimate: Estimate;
+  /** The same quantity without the change. */
+  readonly today: number;
+  readonly probabilityBetter: number;
+  /** Rivals for which it could not be tried, and why. */
+  readonly skipped?: string;
+}
+
+/** Which cautions of the trade apply. */
+export interface CautionTriggers {
+  /** Log-removal, inactivation or contact time is reported. */
+  readonly disinfection?: boolean;
+  /** Reactions release or take up heat. */
+  readonly heat?: boolean;
+  /** Toxic or corrosive species take part. */
+  readonly toxic?: boolean;
+  /** The product is a drug. */
+  readonly drug?: boolean;
+  /** Food or drug is held for sterility. */
+  readonly aseptic?: boolean;
+  /** The vessel holds water for drinking. */
+  readonly drinkingWater?: boolean;
+  readonly radiotracer?: boolean;
+  /** Tracer comes round again. */
+  readonly recirculates?: boolean;
+  /** A reaction is fast against mixing. */
+  readonly fastReaction?: boolean;
+  /** Duties beyond what was tested: "feed 15 L/min, tested up to 10 L/min". */
+  readonly extrapolated?: readonly string[];
+}
+
+export interface Provenance {
+  readonly files: readonly { readonly path: string; readonly sha256: string }[];
+  readonly seed: number;
+  readonly version: string;
+  readonly command: string;
+}

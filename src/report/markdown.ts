@@ -1,0 +1,56 @@
+import { cautionsFor } from "./cautions.js";
+import { chance, estimateLine } from "./digits.js";
+import type { StudyReport } from "./input.js";
+
+/** The study on one page of Markdown: the answer, what it makes, what was fitted, which rivals, cautions, provenance. */
+export function writeSummary(report: StudyReport): string {
+  const { provenance: p } = report;
+  const parts = [
+    `# ${inline(report.title)}`,
+    report.answer.map((a, k) => `${k + 1}. ${inline(a)}`).join("\n"),
+    table(
+      "What it makes",
+      ["duty", "quantity", "value (95 %)"],
+      report.predictions.map((q) => [q.duty, q.name, estimateLine(q.estimate)]),
+    ),
+    table(
+      "Changes",
+      ["change", "quantity", "value (95 %)", "chance of being better"],
+      report.changes.map((c) => [c.name, c.quantity, estimateLine(c.estimate), chance(c.probabilityBetter)]),
+    ),
+    table(
+      "Fitted",
+      ["parameter", "value (95 %)", "remark"],
+      report.parameters.map((q) => [q.name, estimateLine(q.estimate), q.atBound ? `at its ${q.atBound} bound` : ""]),
+    ),
+    table(
+      "Rivals",
+      ["network", "weight", "why"],
+      report.rivals.map((r) => [r.network, chance(r.weight), r.verdict]),
+    ),
+    bullets(
+      "Findings",
+      report.findings.map((f) => `${f.message} (${f.evidence})`),
+    ),
+    bullets("Not supported by the data", report.notSupported),
+    bullets(
+      "Cautions",
+      cautionsFor(report.cautions).map((c) => `${c.about}: ${c.says}`),
+    ),
+    `\`${p.command}\`, backmix ${p.version}, seed ${p.seed}`,
+  ];
+  return `${parts.filter((part) => part !== "").join("\n\n")}\n`;
+}
+
+function table(heading: string, head: readonly string[], rows: readonly (readonly string[])[]): string {
+  if (rows.length === 0) return "";
+  const line = (cells: readonly string[]): string =>
+    `| ${cells.map((c) => inline(c).replaceAll("|", "\\|")).join(" | ")} |`;
+  return [`## ${heading}`, "", line(head), line(head.map(() => "---")), ...rows.map(line)].join("\n");
+}
+
+const bullets = (heading: string, items: readonly string[]): string =>
+  items.length === 0 ? "" : [`## ${heading}`, "", ...items.map((i) => `- ${inline(i)}`)].join("\n");
+
+/** Words on one line that Markdown does not take for marks. */
+const inline = (words: string): string => words.replace(/\s+/g, " ").replace(/([\\`*_<[\]])/g, "\\$1");
