@@ -100,7 +100,7 @@ function resolveFeeds(node: Tree | undefined, chemistry: Chemistry | undefined, 
   const known = chemistry?.species.map((s) => s.name);
   const isSpecies = ({ key }: Entry): boolean => {
     if (!known || known.includes(key.text)) return true;
-    report("unknown-place", key.at, { name: key.text, nearest: nearest(key.text, known), wanted: "species" });
+    report("unknown-place", key.at, { name: key.text, nearest: nearest(key.text, known), wanted: "species", known });
     return false;
   };
   const feeds = new Map<string, DutyFeed>();

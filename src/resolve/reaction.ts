@@ -101,7 +101,7 @@ function fromMakes(
 
 function known(name: string, at: Span, species: readonly string[], report: Report): number {
   const i = species.indexOf(name);
-  if (i < 0) report("unknown-place", at, { name, nearest: nearest(name, species), wanted: "species" });
+  if (i < 0) report("unknown-place", at, { name, nearest: nearest(name, species), wanted: "species", known: species });
   return i;
 }
 
@@ -154,7 +154,7 @@ function massAction(
   }
   const missing = names.filter(({ text: name, at }) => {
     if (constants.includes(name)) return false;
-    report("unknown-place", at, { name, nearest: nearest(name, constants), wanted: "constant" });
+    report("unknown-place", at, { name, nearest: nearest(name, constants), wanted: "constant", known: constants });
     return true;
   });
   if (missing.length > 0) return undefined;

@@ -23,7 +23,12 @@ export function resolveReportLine(node: ScalarNode, species: readonly string[], 
   const line = { text, place: node.at, of: "", versus: undefined, percent: undefined, at: undefined };
   const known = (asked: string | undefined): boolean => {
     if (asked === undefined || species.includes(asked)) return true;
-    report("unknown-place", node.at, { name: asked, nearest: nearest(asked, species), wanted: "species" });
+    report("unknown-place", node.at, {
+      name: asked,
+      nearest: nearest(asked, species),
+      wanted: "species",
+      known: species,
+    });
     return false;
   };
   if (ofTime.test(text)) {
