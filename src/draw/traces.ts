@@ -2,7 +2,7 @@ import { path } from "../svg/marks.js";
 import { px, type Svg } from "../svg/svg.js";
 import type { Axis } from "./axes.js";
 
-/** More points than this are drawn smaller, and only where they show: loggers give hundreds of thousands. */
+/** More points than this are drawn as dots on a grid of px: loggers give hundreds of thousands. */
 const many = 1200;
 
 /** A line through points; breaks where a value is no number, or lies at or below `floor` (log axes). */
@@ -38,7 +38,8 @@ export function points(
   className: string,
   floor = Number.NEGATIVE_INFINITY,
 ): { svg: Svg; hidden: number } {
-  const r = x.length > many ? 0.8 : x.length > 250 ? 1.4 : 2.2;
+  const dense = x.length > many;
+  const r = x.length > 250 ? 1.4 : 2.2;
   const taken = new Set<number>();
   let d = "";
   let hidden = 0;
@@ -48,13 +49,17 @@ export function points(
       continue;
     }
     const here = { x: ax.at(x[k]), y: ay.at(y[k]) };
-    const spot = Math.round(here.x * 2) * 65536 + Math.round(here.y * 2);
-    if (x.length > many && taken.has(spot)) continue;
-    taken.add(spot);
+    if (dense) {
+      const spot = { x: Math.round(here.x), y: Math.round(here.y) };
+      const key = spot.x * 65536 + spot.y;
+      if (!taken.has(key)) d += `M${spot.x} ${spot.y}h.1`;
+      taken.add(key);
+      continue;
+    }
     const arc = `a${px(r)} ${px(r)} 0 1 0`;
     d += `M${px(here.x - r)} ${px(here.y)}${arc} ${px(2 * r)} 0${arc} ${px(-2 * r)} 0`;
   }
-  return { svg: d === "" ? "" : path(d, className), hidden };
+  return { svg: d === "" ? "" : path(d, dense ? `${className} dense` : className), hidden };
 }
 
 /** The area between two lines over the same x. */

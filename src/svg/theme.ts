@@ -133,6 +133,7 @@ function drawingRules(colour: (name: keyof Palette) => string): readonly Rule[] 
     [[".axis"], `stroke:${colour("quiet")};stroke-width:1;fill:none`],
     [[".grid"], `stroke:${colour("faint")};stroke-width:.6;stroke-opacity:.7`],
     [[".point"], `fill:none;stroke:${colour("quiet")};stroke-width:1`],
+    [[".point.dense"], "stroke-width:1.4;stroke-linecap:round"],
     [[".point.out"], `stroke:${colour("hatch")};stroke-dasharray:1.5 1.5`],
     [[".residual"], `stroke:${colour("wall")};stroke-width:1.25`],
     [[".area"], `fill:${colour("old")};fill-opacity:.22`],
