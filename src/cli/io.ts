@@ -1,4 +1,4 @@
-import { mkdirSync, readFileSync, renameSync, rmSync, statSync, writeFileSync } from "node:fs";
+import { mkdirSync, readFileSync, readSync, renameSync, rmSync, statSync, writeFileSync } from "node:fs";
 import { dirname, resolve } from "node:path";
 import { UsageError } from "./usage.js";
 
@@ -27,7 +27,7 @@ export function files(cwd: string): Pick<Io, "read" | "exists" | "write"> {
   return {
     read(path) {
       try {
-        return readFileSync(path === "-" ? 0 : resolve(cwd, path));
+        return path === "-" ? standardInput() : readFileSync(resolve(cwd, path));
       } catch {
         return undefined;
       }
@@ -43,11 +43,41 @@ export function files(cwd: string): Pick<Io, "read" | "exists" | "write"> {
         writeFileSync(draft, content);
         renameSync(draft, target);
       } catch (e) {
-        rmSync(draft, { force: true });
+        discard(draft);
         throw new UsageError(`'${path}' cannot be written: ${(e as NodeJS.ErrnoException).code ?? String(e)}`);
       }
     },
   };
+}
+
+/** Takes a draft away, where there is one. */
+function discard(draft: string): void {
+  try {
+    rmSync(draft, { force: true });
+  } catch {
+    // There never was one: its folder is no folder.
+  }
+}
+
+const chunkSize = 65_536;
+
+/** All of standard input. A pipe that does not block says EAGAIN while it is empty: that is no end of it. */
+function standardInput(): Uint8Array {
+  const chunks: Uint8Array[] = [];
+  const pause = new Int32Array(new SharedArrayBuffer(4));
+  for (;;) {
+    const chunk = Buffer.alloc(chunkSize);
+    try {
+      const size = readSync(0, chunk);
+      if (size === 0) return Buffer.concat(chunks);
+      chunks.push(chunk.subarray(0, size));
+    } catch (e) {
+      const { code } = e as NodeJS.ErrnoException;
+      if (code === "EOF") return Buffer.concat(chunks);
+      if (code !== "EAGAIN") throw e;
+      Atomics.wait(pause, 0, 0, 10);
+    }
+  }
 }
 
 /** What the process says of its terminal; colour as NO_COLOR and FORCE_COLOR ask (no-color.org). */

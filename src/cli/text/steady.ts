@@ -1,13 +1,15 @@
 import type { Plant } from "../../compile/plant.js";
 import type { Duty } from "../../model/duty.js";
-import type { SteadyState } from "../../reaction/steady.js";
+import type { Figure } from "../../reaction/figures.js";
+import type { Prediction } from "../../reaction/prediction.js";
 import { formatNumber, formatQuantity } from "../../units/format.js";
 import { inUnit } from "../../units/unit.js";
 import { speciesUnits } from "../species.js";
 import { blocks, pairs, table } from "./table.js";
 
 /** The steady state of a duty, for people. */
-export function steadyText(plant: Plant, duty: Duty, steady: SteadyState): string {
+export function steadyText(plant: Plant, duty: Duty, prediction: Prediction): string {
+  const { state: steady } = prediction;
   const { species } = steady;
   const units = speciesUnits(plant.network, duty, species);
   const n = species.length;
@@ -38,6 +40,7 @@ export function steadyText(plant: Plant, duty: Duty, steady: SteadyState): strin
         ...steady.outlets.map((o) => row(o.name, o.concentrations)),
       ],
     ),
+    figuresText(prediction),
     pairs([
       ...at,
       [
@@ -50,3 +53,24 @@ export function steadyText(plant: Plant, duty: Duty, steady: SteadyState): strin
 
 const temperatureUnit = (duty: Duty) =>
   duty.temperature?.unit ?? { name: "K", factor: 1, offset: 0, dimension: [0, 0, 0, 0, 1, 0, 0] as const };
+
+const asPercent = /^(conversion|yield|selectivity)/;
+
+/** A figure as people say it: fractions in %. */
+export function reportedText({ name, value, unit, why }: Figure): string {
+  if (why !== undefined) return why;
+  return asPercent.test(name) ? `${formatNumber(100 * value)} %` : formatQuantity(value, unit);
+}
+
+function figuresText({ figures, bounds, premises }: Prediction): string {
+  if (figures.length === 0) return "";
+  const bounded = bounds.some((b) => b !== undefined);
+  const right = (title: string) => ({ title, align: "right" as const });
+  const rows = figures.map((f, i) => {
+    const b = bounds[i];
+    return [f.name, reportedText(f), ...(b ? [reportedText(b.segregated), reportedText(b.maximumMixedness)] : [])];
+  });
+  const columns = bounded ? [right("if segregated"), right("if mixed at once")] : [];
+  const says = premises ? `  ${premises.says}` : "";
+  return [table([{ title: "figure" }, right("value"), ...columns], rows), says].filter((t) => t !== "").join("\n\n");
+}

@@ -1,0 +1,87 @@
+import type { Bounds, ChangedFigure, ChangeOutcome, Prediction, Ranked, StudyResult } from "../../study/result.js";
+import { inUnit, type Unit } from "../../units/unit.js";
+import { fitJson } from "./fit.js";
+import { momentsResultJson } from "./moments.js";
+import { finite, pure, quantity } from "./quantity.js";
+
+/** What a study found, without the path of its report. */
+export function studyJson(result: StudyResult): Record<string, unknown> {
+  return {
+    study: result.study.title,
+    seed: result.study.seed,
+    draws: result.draws,
+    converged: result.converged,
+    ...(result.stopped ? { stopped: result.stopped } : {}),
+    ranking: result.ranking.map(rankedJson),
+    readings: result.readings.map(({ trial, moments }) => ({ trial: trial.title, ...momentsResultJson(moments) })),
+    predictions: result.predictions.map(predictionJson),
+    changes: result.changes.flatMap(changeJson),
+    findings: [
+      ...result.readings.flatMap(({ trial, moments }) => moments.findings.map((f) => ({ trial: trial.title, ...f }))),
+      ...result.ranking.flatMap(({ rival, fit }) => (fit?.findings ?? []).map((f) => ({ network: rival.path, ...f }))),
+    ],
+  };
+}
+
+function rankedJson({ rival, fit, standing, survives, problems }: Ranked): object {
+  const head = { network: rival.path, title: rival.network.title };
+  if (!fit) {
+    const why = problems.map((p) => p.message);
+    return { ...head, aicc: null, why: "not-estimable", weight: 0, survives: false, fit: null, because: why };
+  }
+  return {
+    ...head,
+    aicc: finite(fit.aicc),
+    difference: finite(standing.difference),
+    weight: standing.weight,
+    survives,
+    fit: fitJson(fit, rival.network.units.time),
+  };
+}
+
+function predictionJson({ duty, rival, name, value, unit, interval95, bounds }: Prediction): object {
+  return {
+    duty: duty.title,
+    network: rival.path,
+    name,
+    ...quantity(value, unit),
+    interval95: intervalJson(interval95, unit),
+    bounds: bounds ? boundsJson(bounds, unit) : null,
+  };
+}
+
+const boundsJson = ({ segregated, maximumMixedness, position, says, apply }: Bounds, unit: Unit): object => ({
+  segregated: quantity(segregated, unit),
+  maximumMixedness: quantity(maximumMixedness, unit),
+  position: position ?? null,
+  apply,
+  says,
+});
+
+function changeJson({ change, rival, skipped, figures }: ChangeOutcome): object[] {
+  const head = { change: change.title, file: change.path, network: rival.path };
+  if (skipped !== undefined) return [{ ...head, skipped }];
+  return figures.map((f) => ({ ...head, ...changedJson(f) }));
+}
+
+const changedJson = ({
+  duty,
+  name,
+  unit,
+  before,
+  value,
+  interval95,
+  difference95,
+  probabilityBetter,
+}: ChangedFigure): object => ({
+  duty: duty.title,
+  name,
+  before: quantity(before, unit),
+  ...quantity(value, unit),
+  interval95: intervalJson(interval95, unit),
+  difference95: difference95 ? difference95.map((v) => pure(v / unit.factor).value) : null,
+  probabilityBetter: probabilityBetter ?? null,
+});
+
+const intervalJson = (interval: readonly [number, number] | undefined, unit: Unit): (number | null)[] | null =>
+  interval ? interval.map((v) => finite(inUnit(v, unit))) : null;

@@ -1,0 +1,94 @@
+import { chance, estimateLine } from "../../report/digits.js";
+import type { StudyResult } from "../../study/result.js";
+import { formatNumber } from "../../units/format.js";
+import { inUnit, type Unit } from "../../units/unit.js";
+import { blocks, type Column, table } from "./table.js";
+
+/** What a study found, on one screen; the report has the rest. */
+export function studyText(result: StudyResult): string {
+  const marked = result.stopped
+    ? " (interrupted: what was finished)"
+    : result.converged
+      ? ""
+      : " (a fit did not converge)";
+  return blocks(`${result.study.title}${marked}`, rankingTable(result), predictionsTable(result), changesTable(result));
+}
+
+const right = (title: string) => ({ title, align: "right" as const });
+
+function rankingTable({ ranking }: StudyResult): string {
+  return table(
+    [{ title: "rival" }, right("AICc above the best"), right("weight"), { title: "" }],
+    ranking.map(({ rival, fit, standing, survives, problems }) => [
+      rival.network.title,
+      fit ? formatNumber(standing.difference, 4) : "",
+      fit ? chance(standing.weight) : "",
+      fit ? (survives ? "" : "ruled out") : `no fit: ${problems[0]?.message ?? "interrupted"}`,
+    ]),
+  );
+}
+
+function predictionsTable({ predictions }: StudyResult): string {
+  if (predictions.length === 0) return "";
+  const rows = predictions.map(({ duty, name, value, unit, interval95, bounds, rival }): Row => {
+    const shown = people(name, unit);
+    const bound = (si: number | undefined): string => (si === undefined ? "" : formatNumber(inUnit(si, shown)));
+    const ends = [bound(bounds?.segregated), bound(bounds?.maximumMixedness)];
+    return { by: rival.network.title, cells: [duty.title, name, estimate(value, interval95, shown), ...ends] };
+  });
+  return tableBy(
+    [
+      { title: "duty" },
+      { title: "figure" },
+      { title: "value (95 %)" },
+      right("if segregated"),
+      right("if mixed at once"),
+    ],
+    rows,
+  );
+}
+
+function changesTable({ changes }: StudyResult): string {
+  if (changes.length === 0) return "";
+  const rows = changes.flatMap(({ change, rival, skipped, figures }): Row[] => {
+    const by = rival.network.title;
+    if (skipped !== undefined) return [{ by, cells: [change.title, `skipped: ${skipped}`] }];
+    return figures.map(({ name, unit, before, value, interval95, probabilityBetter }) => {
+      const shown = people(name, unit);
+      const better = probabilityBetter === undefined ? "" : chance(probabilityBetter);
+      const today = formatNumber(inUnit(before, shown), 3);
+      return { by, cells: [change.title, name, today, estimate(value, interval95, shown), better] };
+    });
+  });
+  return tableBy(
+    [{ title: "change" }, { title: "figure" }, right("today"), { title: "value (95 %)" }, right("chance of better")],
+    rows,
+  );
+}
+
+/** A row, and the rival that says so. */
+interface Row {
+  readonly by: string;
+  readonly cells: readonly string[];
+}
+
+/** A table whose last column names the rival, where several survive. */
+function tableBy(columns: readonly Column[], rows: readonly Row[]): string {
+  const several = new Set(rows.map((r) => r.by)).size > 1;
+  const by = (r: Row): readonly string[] => [...r.cells, ...Array(columns.length - r.cells.length).fill(""), r.by];
+  return several
+    ? table([...columns, { title: "by" }], rows.map(by))
+    : table(
+        columns,
+        rows.map((r) => r.cells),
+      );
+}
+
+/** Fractions of what is fed or made are said in %. */
+const people = (name: string, unit: Unit): Unit =>
+  /^(conversion|yield|selectivity)/.test(name) ? { ...unit, name: "%", factor: 0.01 } : unit;
+
+function estimate(value: number, interval: readonly [number, number] | undefined, unit: Unit): string {
+  const [low, high] = (interval ?? []).map((v) => inUnit(v, unit));
+  return estimateLine({ value: inUnit(value, unit), unit: unit.name, low, high });
+}

@@ -1,0 +1,114 @@
+import { type ChildProcess, spawn } from "node:child_process";
+import { mkdtempSync, readdirSync, readFileSync, rmSync, writeFileSync } from "node:fs";
+import { tmpdir } from "node:os";
+import { join } from "node:path";
+import { build } from "esbuild";
+import { afterAll, beforeAll, describe, expect, test } from "vitest";
+import { files } from "./vessels.js";
+
+// The program as it is shipped: one bundle, a process of its own.
+const folder = mkdtempSync(join(tmpdir(), "backmix-"));
+const script = join(folder, "dist", "backmix.js");
+
+beforeAll(async () => {
+  await build({
+    entryPoints: { backmix: "src/cli/main.ts" },
+    outdir: join(folder, "dist"),
+    bundle: true,
+    splitting: true,
+    format: "esm",
+    platform: "node",
+    target: "node20",
+    define: { BACKMIX_VERSION: '"9.8.7"' },
+    banner: { js: 'import { createRequire } from "node:module"; const require = createRequire(import.meta.url);' },
+    logLevel: "error",
+  });
+  writeFileSync(join(folder, "package.json"), '{"type": "module"}');
+  for (const [name, text] of Object.entries(files)) writeFileSync(join(folder, name), text);
+});
+
+const children: ChildProcess[] = [];
+
+afterAll(() => {
+  for (const child of children) child.kill("SIGKILL");
+  rmSync(folder, { recursive: true, force: true });
+});
+
+function start(args: readonly string[]): ChildProcess {
+  const child = spawn(process.execPath, [script, ...args], { cwd: folder, stdio: "pipe" });
+  children.push(child);
+  return child;
+}
+
+function ended(child: ChildProcess): Promise<{ status: number | null; out: string; err: string }> {
+  let out = "";
+  let err = "";
+  child.stdout?.on("data", (chunk) => {
+    out += chunk;
+  });
+  child.stderr?.on("data", (chunk) => {
+    err += chunk;
+  });
+  return new Promise((done) => child.on("close", (status) => done({ status, out, err })));
+}
+
+describe("the program as a process", () => {
+  test("gives its version", async () => {
+    expect(await ended(start(["--version"]))).toEqual({ status: 0, out: "9.8.7\n", err: "" });
+  });
+
+  test("exits with the status of the command", async () => {
+    expect((await ended(start(["check", "tank.yaml"]))).status).toBe(0);
+    expect((await ended(start(["check", "broken.yaml"]))).status).toBe(1);
+    expect((await ended(start(["chek"]))).status).toBe(2);
+    expect((await ended(start(["fit", "tank.yaml"]))).status).toBe(2);
+  });
+
+  test("fits in a thread of its own with the same words", async () => {
+    const { status, out, err } = await ended(start(["fit", "tank.yaml", "--trial", "pulse.yaml", "--json"]));
+    expect(err).toBe("");
+    expect(status).toBe(0);
+    expect(JSON.parse(out).parameters.size.value).toBeCloseTo(80, 3);
+  });
+
+  test("writes a file whole and leaves nothing beside it", async () => {
+    const { status } = await ended(start(["simulate", "tank.yaml", "--pulse", "feed", "-o", "made/curve.csv"]));
+    expect(status).toBe(0);
+    expect(readdirSync(join(folder, "made"))).toEqual(["curve.csv"]);
+    expect(readFileSync(join(folder, "made/curve.csv"), "utf8").split("\n")).toHaveLength(402);
+  });
+
+  test("says where it cannot write", async () => {
+    const { status, err } = await ended(
+      start(["simulate", "tank.yaml", "--pulse", "feed", "-o", "tank.yaml/curve.csv"]),
+    );
+    expect(status).toBe(2);
+    expect(err).toMatch(/'tank\.yaml\/curve\.csv' cannot be written/);
+  });
+
+  test("a folder in place of a file is said to be one", async () => {
+    const { status, out } = await ended(start(["check", "dist"]));
+    expect(status).toBe(1);
+    expect(out).toContain("file-unreadable");
+  });
+
+  // Windows knows no interrupt that one process can send another.
+  test.skipIf(process.platform === "win32")("an interrupt ends a fit with its best so far and 130", async () => {
+    writeFileSync(join(folder, "p1.csv"), readFileSync("test/fit/p1/p1-data.csv"));
+    writeFileSync(
+      join(folder, "p1-pulse.yaml"),
+      readFileSync("test/fit/p1/p1-pulse.yaml", "utf8").replace("p1-data.csv", "p1.csv"),
+    );
+    const child = start(["fit", "-", "--trial", "p1-pulse.yaml", "--starts", "1000"]);
+    const end = ended(child);
+    // More than a pipe holds: once it is all gone, the fit has begun to read and the interrupt will be heard.
+    const long = `${readFileSync("test/fit/p1/p1.yaml", "utf8")}${"# as drawn\n".repeat(100_000)}`;
+    await new Promise((flushed) => child.stdin?.end(long, () => flushed(undefined)));
+    await new Promise((later) => setTimeout(later, 300));
+    child.kill("SIGINT");
+    const { status, out, err } = await end;
+    expect(err).toContain("backmix: stopping");
+    expect(status).toBe(130);
+    expect(out).toContain("interrupted: best so far");
+  });
+});
