@@ -5,9 +5,11 @@ import type { Dimension } from "../units/dimension.js";
 import { formatQuantity } from "../units/format.js";
 import { parameterBounds, requirements, sharesBesideRest } from "./bounds.js";
 import { exchanges } from "./exchanges.js";
+import { finiteValues } from "./finite.js";
 import { placeNames, streamTargets, unusedNames } from "./names.js";
 import type { Rule } from "./rule.js";
 import { splits } from "./splits.js";
+import { checkSubjects } from "./statements.js";
 import { topologyOf } from "./topology.js";
 import { feedsAndOutlets, waysThrough } from "./ways.js";
 
@@ -16,12 +18,14 @@ const rules: readonly Rule[] = [
   streamTargets,
   feedsAndOutlets,
   waysThrough,
+  finiteValues,
   splits,
   exchanges,
   parameterBounds,
   requirements,
   sharesBesideRest,
   unusedNames,
+  checkSubjects,
 ];
 
 /** Runs every rule on a network whose names and values are all bound. */

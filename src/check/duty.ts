@@ -10,7 +10,7 @@ export function checkDuty(network: Network, duty: Duty, report: Report): void {
   const feeds = network.feeds.map((f) => f.name);
   const look = (name: string, at: Span, wanted: string, among: readonly string[]): boolean => {
     if (among.includes(name)) return true;
-    report("unknown-place", at, { name, nearest: nearest(name, among), wanted });
+    report("unknown-place", at, { name, nearest: nearest(name, among), wanted, known: among });
     return false;
   };
   for (const [name, { at }] of duty.flows) look(name, at, "feed", feeds);

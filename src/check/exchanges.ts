@@ -9,15 +9,16 @@ export const exchanges: Rule = (network, report, { nearest }) => {
     for (const e of c.exchanges) {
       const partner = bodies.get(e.partner);
       if (!partner) {
-        const near = nearest(
-          e.partner,
-          [...bodies.keys()].filter((n) => n !== c.name),
-        );
-        report("unknown-place", e.at, { name: e.partner, wanted: "compartment", nearest: near });
+        const known = network.compartments.filter((b) => b !== c && refusal(b).length === 0).map((b) => b.name);
+        const near = nearest(e.partner, known);
+        report("unknown-place", e.at, { name: e.partner, wanted: "stirred tank", nearest: near, known });
         continue;
       }
-      const why = partner === c ? "it is itself" : [c, partner].flatMap((b) => refusal(b))[0];
-      if (why) report("exchange-partner", e.at, { name: c.name, partner: e.partner, why });
+      const why = partner === c ? "that is the tank itself" : [c, partner].flatMap((b) => refusal(b))[0];
+      if (why) {
+        report("exchange-partner", e.at, { name: c.name, partner: e.partner, why });
+        continue;
+      }
       const key = [c.name, e.partner].sort().join(" ");
       const earlier = seen.get(key);
       if (earlier) {
@@ -33,6 +34,6 @@ export const exchanges: Rule = (network, report, { nearest }) => {
 };
 
 function refusal(body: Compartment): string[] {
-  if (!body.kind.exchanges) return [`'${body.name}' is ${body.kind.name}`];
-  return body.kind.mayExchange(body.counts) ? [] : [`'${body.name}' is a chain of several`];
+  if (!body.kind.exchanges) return [`'${body.name}' is of \`kind: ${body.kind.name}\``];
+  return body.kind.mayExchange(body.counts) ? [] : [`'${body.name}' is ${body.counts.repeat} tanks in series`];
 }

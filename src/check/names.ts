@@ -19,14 +19,23 @@ export const placeNames: Rule = (network, report) => {
 export const streamTargets: Rule = (network, report, { nearest }) => {
   const bodies = new Map(network.compartments.map((c) => [c.name, c]));
   const outlets = new Set(network.outlets.map((o) => o.name));
-  const feeds = new Set(network.feeds.map((f) => f.name));
+  const feeds = new Map(network.feeds.map((f) => [f.name, f]));
   for (const node of [...network.feeds, ...network.compartments]) {
     for (const s of node.streams) {
-      if (feeds.has(s.to)) report("into-feed", s.at, { name: s.to, from: node.name });
-      else if (!bodies.has(s.to) && !outlets.has(s.to)) {
-        const wanted = "compartment or outlet";
-        report("unknown-place", s.at, { name: s.to, wanted, nearest: nearest(s.to, [...bodies.keys(), ...outlets]) });
-      } else if (bodies.get(s.to)?.kind.flows === false) report("dead-with-streams", s.at, { name: s.to });
+      const feed = feeds.get(s.to);
+      if (feed) {
+        const into = feed.streams.length === 1 ? feed.streams[0].to : undefined;
+        report("into-feed", s.at, { name: s.to, from: node.name, enters: into });
+      } else if (!bodies.has(s.to) && !outlets.has(s.to)) {
+        const known = [...bodies.keys(), ...outlets];
+        report("unknown-place", s.at, {
+          name: s.to,
+          wanted: "compartment or outlet",
+          nearest: nearest(s.to, known),
+          known,
+        });
+      } else if (bodies.get(s.to)?.kind.flows === false)
+        report("dead-with-streams", s.at, { name: s.to, from: node.name });
     }
   }
 };

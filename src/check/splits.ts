@@ -1,28 +1,31 @@
 import type { Rule } from "./rule.js";
 
+const ratio = [0, 0, 0, 0, 0, 0, 0];
+
 /** How a node divides what leaves it: shares within 0 to 100 %, adding to 100 % or leaving a `rest`. */
 export const splits: Rule = (network, report, { env, say }) => {
-  const ratio = [0, 0, 0, 0, 0, 0, 0];
-  for (const node of [...network.feeds, ...network.compartments]) {
-    const at = "toAt" in node ? node.toAt : (node.streams[0]?.at ?? node.at);
+  for (const { name, streams, toAt } of [...network.feeds, ...network.compartments]) {
+    if (streams.length === 0 || streams.some((s) => s.split.is === "all")) continue;
     let total = 0;
     let rests = 0;
     let fixed = false;
-    for (const s of node.streams) {
-      if (s.split.is === "share") {
-        const share = s.split.value.of(env);
-        total += share;
-        if (!(share >= 0 && share <= 1)) {
-          report("share-range", s.split.value.at, { name: node.name, to: s.to, value: say(share, ratio) });
-        }
-      } else if (s.split.is === "flow") fixed = true;
-      else if (s.split.is === "rest" && ++rests === 2) report("rest-twice", s.at, { name: node.name });
+    let within = true;
+    for (const { split, at, to } of streams) {
+      if (split.is === "flow") fixed = true;
+      if (split.is === "rest" && ++rests === 2) report("rest-twice", at, { name });
+      if (split.is !== "share") continue;
+      const share = split.value.of(env);
+      total += share;
+      if (share >= 0 && share <= 1) continue;
+      within = false;
+      if (!Number.isFinite(share)) continue; // another rule says so
+      const recycle = share > 1 ? say(share / (1 + share), ratio) : undefined;
+      report("share-range", split.value.at, { name, to, value: say(share, ratio), recycle });
     }
-    const alone = node.streams.some((s) => s.split.is === "all");
-    if (alone || node.streams.length === 0) continue;
-    if (fixed && rests === 0) report("rest-missing", at, { name: node.name });
-    else if (rests > 0 ? total > 1 + 1e-9 : Math.abs(total - 1) > 1e-9) {
-      report("share-sum", at, { name: node.name, total: say(total, ratio) });
+    const rest = rests > 0;
+    if (fixed && !rest) report("rest-missing", toAt, { name });
+    else if (within && (rest ? total > 1 + 1e-9 : Math.abs(total - 1) > 1e-9)) {
+      report("share-sum", toAt, { name, total: say(total, ratio), rest });
     }
   }
 };

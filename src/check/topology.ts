@@ -1,5 +1,5 @@
 import type { Network } from "../model/network.js";
-import { type Graph, reachable } from "../numerics/graph.js";
+import type { Graph } from "../numerics/graph.js";
 
 /** The places of a network as a graph: feeds, compartments, outlets in file order. Streams only, or exchanges too. */
 export interface Topology {
@@ -38,20 +38,4 @@ export function topologyOf(network: Network): Topology {
   }
   const size = names.length;
   return { names, index, streams: { size, from, to }, ways: { size, from: bothFrom, to: bothTo } };
-}
-
-/** What can be reached from the feeds, and what can reach an outlet. */
-export function reachOf(network: Network, topology: Topology): { fromFeeds: Uint8Array; toOutlets: Uint8Array } {
-  const { ways, index } = topology;
-  const at = (name: string) => index.get(name) as number;
-  return {
-    fromFeeds: reachable(
-      ways,
-      network.feeds.map((f) => at(f.name)),
-    ),
-    toOutlets: reachable(
-      { size: ways.size, from: ways.to, to: ways.from },
-      network.outlets.map((o) => at(o.name)),
-    ),
-  };
 }

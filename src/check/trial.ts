@@ -4,6 +4,7 @@ import type { Report } from "../problems/report.js";
 import { nearest } from "../text/nearest.js";
 import { siUnit } from "../units/describe.js";
 import { type Dimension, dimensions, isRatio, over, sameDimension } from "../units/dimension.js";
+import { sameKind } from "./same-kind.js";
 
 /**
  * Does a trial fit a network: are its feeds, places and constants there, and do doses make the concentrations that
@@ -26,7 +27,8 @@ function checkPlaces(network: Network, trial: Trial, report: Report): void {
     Array.from({ length: counts.repeat ?? 0 }, (_, i) => `${name}.${i + 1}`),
   );
   const look = (name: string, at: Parameters<Report>[1], wanted: string, among: readonly string[]): void => {
-    if (!among.includes(name)) report("unknown-place", at, { name, nearest: nearest(name, among), wanted });
+    if (!among.includes(name))
+      report("unknown-place", at, { name, nearest: nearest(name, among), wanted, known: among });
   };
   for (const { at, where } of trial.injections) {
     look(at, where, "feed or compartment", [...feeds, ...compartments, ...members]);
@@ -35,7 +37,11 @@ function checkPlaces(network: Network, trial: Trial, report: Report): void {
     look(at, where, "outlet, compartment or feed", [...outlets, ...compartments, ...members, ...feeds]);
   }
   for (const [name, value] of trial.flows) look(name, value.at, "feed", feeds);
-  for (const [name, value] of trial.with) look(name, value.at, "constant", constants);
+  for (const [name, value] of trial.with) {
+    look(name, value.at, "constant", constants);
+    const constant = network.names.find((n) => n.role === "constant" && n.name === name);
+    if (constant) sameKind(constant.value.dimension, value, report);
+  }
 }
 
 /** Does what is put in make the kind of concentration that is read? True where it does. */

@@ -1,5 +1,6 @@
+import type { Network } from "../model/network.js";
+import { type Graph, reachable, stronglyConnected } from "../numerics/graph.js";
 import type { Rule } from "./rule.js";
-import { reachOf } from "./topology.js";
 
 /** Feeds and outlets exist. */
 export const feedsAndOutlets: Rule = (network, report) => {
@@ -7,30 +8,69 @@ export const feedsAndOutlets: Rule = (network, report) => {
   if (network.outlets.length === 0) report("no-outlet", network.at, {});
 };
 
-/** Every place has a way in and a way out, and all that enters ends in an outlet. Judged by topology, not by value. */
+/**
+ * Every place has a way in and a way out, and all that enters ends in an outlet. Judged by topology, not by value; said
+ * where it begins, not again of all that lies behind.
+ */
 export const waysThrough: Rule = (network, report, { topology }) => {
   if (network.feeds.length === 0 || network.outlets.length === 0) return;
-  const { fromFeeds, toOutlets } = reachOf(network, topology);
-  const exchanged = new Set(network.compartments.flatMap((c) => c.exchanges.flatMap((e) => [c.name, e.partner])));
-  const stuck: { name: string; at: (typeof network)["at"] }[] = [];
-  for (const node of [...network.feeds, ...network.compartments]) {
-    const i = topology.index.get(node.name) as number;
-    const dead = "kind" in node && !node.kind.flows;
-    if (dead) {
-      if (node.streams.length > 0) report("dead-with-streams", node.at, { name: node.name });
-      continue;
-    }
-    if (!fromFeeds[i]) report("unreachable", node.at, { name: node.name });
-    else if (node.streams.length === 0 && !exchanged.has(node.name)) report("no-way-out", node.at, { name: node.name });
-    else if (!toOutlets[i] && node.streams.length > 0) stuck.push(node);
-  }
-  // Where a stream ends nowhere the circle is not the fault.
-  const lost = [...network.feeds, ...network.compartments].some((n) =>
-    n.streams.some((s) => !topology.index.has(s.to)),
+  // Without knowing where every stream goes nothing can be said.
+  const places = new Set(network.compartments.filter((c) => c.kind.flows).map((c) => c.name));
+  for (const o of network.outlets) places.add(o.name);
+  const nodes = [...network.feeds, ...network.compartments];
+  if (topology.index.size < topology.names.length || nodes.some((n) => n.streams.some((s) => !places.has(s.to))))
+    return;
+
+  const idle = network.feeds.filter((f) => f.streams.length === 0);
+  for (const { name, at } of idle) report("no-way-out", at, { name, feed: true });
+  if (idle.length > 0) return;
+  const seen = reachable(topology.ways, network.feeds.keys());
+  const named = (group: readonly number[]) => group.map((i) => topology.names[i]);
+  const inside = new Set(network.compartments.filter((c) => c.kind.flows).map((c) => topology.index.get(c.name)));
+  const unreached = groupsOf(topology.ways).filter(
+    ({ members, entered }) => !entered && members.every((i) => inside.has(i) && !seen[i]),
   );
-  const noWay = network.compartments.some((c) => c.kind.flows && c.streams.length === 0 && !exchanged.has(c.name));
-  if (stuck.length > 0 && !lost && !noWay) report("closed-loop", stuck[0].at, { names: stuck.map((n) => n.name) });
+  for (const { members } of unreached) report("unreachable", placeOf(network, members[0]), { names: named(members) });
+  const stuck = groupsOf(topology.streams).filter(
+    ({ members, round, left }) => round && !left && members.some((i) => seen[i]),
+  );
+  for (const { members } of stuck) report("closed-loop", placeOf(network, members[0]), { names: named(members) });
+  const entered = new Set(nodes.flatMap((n) => n.streams.map((s) => s.to)));
+  const ends = network.compartments.filter((c) => c.streams.length === 0 && entered.has(c.name));
+  for (const { name, at } of ends) report("no-way-out", at, { name, feed: false });
+  if (unreached.length + stuck.length + ends.length > 0) return;
+  const wet = reachable(topology.streams, network.feeds.keys());
   for (const o of network.outlets) {
-    if (!fromFeeds[topology.index.get(o.name) as number]) report("outlet-dry", o.at, { name: o.name });
+    if (!wet[topology.index.get(o.name) as number]) report("outlet-dry", o.at, { name: o.name });
   }
 };
+
+/** By index in the topology: feeds, compartments, outlets. */
+const placeOf = (network: Network, i: number): Network["at"] =>
+  [...network.feeds, ...network.compartments, ...network.outlets][i].at;
+
+/** Places that can reach one another; has the group edges from elsewhere, to elsewhere, within? */
+interface Group {
+  /** In file order. */
+  readonly members: readonly number[];
+  entered: boolean;
+  left: boolean;
+  round: boolean;
+}
+
+function groupsOf(graph: Graph): Group[] {
+  const groups = stronglyConnected(graph).map(
+    (g): Group => ({ members: [...g].sort((a, b) => a - b), entered: false, left: false, round: false }),
+  );
+  const groupOf: Group[] = [];
+  for (const group of groups) for (const i of group.members) groupOf[i] = group;
+  for (let k = 0; k < graph.from.length; k++) {
+    const [from, to] = [groupOf[graph.from[k]], groupOf[graph.to[k]]];
+    if (from === to) from.round = true;
+    else {
+      from.left = true;
+      to.entered = true;
+    }
+  }
+  return groups;
+}

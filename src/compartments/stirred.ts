@@ -13,7 +13,7 @@ export const stirred: CompartmentKind = {
       example: "800 L",
     },
     repeat: {
-      shape: { is: "whole", atLeast: 1 },
+      shape: { is: "whole", atLeast: 1, atMost: 10_000 },
       says: "How many equal tanks in series share the volume; members are `name.1`, `name.2`, ….",
       example: "3",
       default: "1",

@@ -2,7 +2,7 @@ import type { Network } from "../model/network.js";
 import { backEdges, stronglyConnected } from "../numerics/graph.js";
 import type { Problem } from "../problems/problem.js";
 import { collector, type Report } from "../problems/report.js";
-import { dimensions } from "../units/dimension.js";
+import { type Dimension, dimensions } from "../units/dimension.js";
 import { formatQuantity } from "../units/format.js";
 import { evaluateNames, kindValues } from "./evaluate.js";
 import { balanceFlows, type Flows } from "./flows.js";
@@ -15,24 +15,34 @@ import { spellOut } from "./spell.js";
  * @returns no plant, and the reasons as problems, where values make a volume or flow impossible; never throws
  */
 export function compile(network: Network, settings: Settings = {}): { plant: Plant | undefined; problems: Problem[] } {
-  const { report, problems } = collector();
-  const env = evaluateNames(network, settings);
-  const volumes = volumesOf(network, env, report);
-  const flows = balanceFlows(network, env, report, (q) => sayFlow(network, q));
-  exchangesPositive(network, env, report);
+  const { env, volumes, flows, problems } = balance(network, settings);
   if (!flows || problems.length > 0) return { plant: undefined, problems };
   return { plant: plantOf(network, env, volumes, flows), problems };
 }
 
-const sayFlow = (network: Network, flow: number) => formatQuantity(flow, network.units.unitFor(dimensions.flow), 6);
+/** What makes a network impossible at these values; empty where `compile` would give a plant. Cheaper than the plant. */
+export const problemsAt = (network: Network, settings: Settings): Problem[] => balance(network, settings).problems;
+
+function balance(network: Network, settings: Settings) {
+  const { report, problems } = collector();
+  const env = evaluateNames(network, settings);
+  const volumes = volumesOf(network, env, report);
+  const flows = balanceFlows(network, env, report, (si, dimension) => say(network, si, dimension));
+  exchangesPositive(network, env, report);
+  return { env, volumes, flows, problems };
+}
+
+const say = (network: Network, si: number, dimension: Dimension) =>
+  formatQuantity(si, network.units.unitFor(dimension), 6);
 
 function volumesOf(network: Network, env: Float64Array, report: Report): Float64Array {
-  const unit = network.units.unitFor(dimensions.volume);
   return Float64Array.from(network.compartments, (c) => {
     const volume = c.kind.volume(kindValues(c, env));
-    if (!(volume >= 0)) {
-      const at = c.values.volume?.at ?? c.at;
-      report("negative-volume", at, { name: c.name, value: formatQuantity(volume, unit, 6) });
+    const at = c.values.volume?.at ?? c.at;
+    if (!Number.isFinite(volume)) {
+      report("not-finite", at, { what: `the volume of '${c.name}'`, infinite: !Number.isNaN(volume) });
+    } else if (volume < 0) {
+      report("negative-volume", at, { name: c.name, value: say(network, volume, dimensions.volume) });
     }
     return volume;
   });
@@ -42,11 +52,11 @@ function exchangesPositive(network: Network, env: Float64Array, report: Report):
   for (const c of network.compartments) {
     for (const e of c.exchanges) {
       const flow = e.flow.of(env);
-      if (!(flow >= 0)) {
-        report("negative-flow", e.flow.at, {
-          name: `between '${c.name}' and '${e.partner}'`,
-          value: sayFlow(network, flow),
-        });
+      const name = `between '${c.name}' and '${e.partner}'`;
+      if (!Number.isFinite(flow)) {
+        report("not-finite", e.flow.at, { what: `the flow ${name}`, infinite: !Number.isNaN(flow) });
+      } else if (flow < 0) {
+        report("negative-flow", e.flow.at, { name, value: say(network, flow, dimensions.flow), exchange: true });
       }
     }
   }

@@ -3,6 +3,7 @@ import { stronglyConnected } from "../numerics/graph.js";
 import { factor, solve } from "../numerics/lu.js";
 import type { Report } from "../problems/report.js";
 import type { Span } from "../text/source.js";
+import { type Dimension, dimensions } from "../units/dimension.js";
 
 /** Solved steady flows, m3/s. */
 export interface Flows {
@@ -31,33 +32,32 @@ interface Branch {
 /**
  * Steady flows of every stream. Groups of places are taken in flow order (Tarjan 1972): what is fed forward is plain
  * substitution, only circles need a small linear solve.
- * @param say a flow as the file would write it, for messages
  * @returns undefined where a flow cannot be found; the reason is in `report`
  */
-export function balanceFlows(
-  network: Network,
-  env: Float64Array,
-  report: Report,
-  say: (flow: number) => string,
-): Flows | undefined {
-  const places = [...network.feeds, ...network.compartments, ...network.outlets];
+export function balanceFlows(network: Network, env: Float64Array, report: Report, say: Say): Flows | undefined {
+  const places: Place[] = [...network.feeds, ...network.compartments, ...network.outlets];
   const index = new Map(places.map((p, i) => [p.name, i]));
   const branches = branchesOf(network, index, env);
   const supply = new Float64Array(places.length);
-  let good = true;
+  let good = splitsPossible(network, env, report, say);
   network.feeds.forEach((f, i) => {
     supply[i] = env[f.flowSlot];
-    if (!(supply[i] > 0)) {
-      good = false;
-      report("feed-zero", f.flow.at, { name: f.name, value: say(supply[i]) });
+    if (supply[i] > 0 && Number.isFinite(supply[i])) return;
+    good = false;
+    if (Number.isFinite(supply[i]))
+      report("feed-zero", f.flow.at, { name: f.name, value: say(supply[i], dimensions.flow) });
+    else {
+      report("not-finite", f.flow.at, { what: `the flow of '${f.name}'`, infinite: !Number.isNaN(supply[i]) });
     }
   });
   if (!good) return undefined;
-  const through = solveThrough(places.length, branches, supply);
-  if (typeof through === "number") {
-    report("closed-loop", places[through].at, { names: [places[through].name] });
+  const solved = solveThrough(places.length, branches, supply);
+  if ("stuck" in solved) {
+    const group = [...solved.stuck].sort((a, b) => a - b).map((i) => places[i]);
+    report("loop-unbounded", group[0].at, { names: group.map((p) => p.name) });
     return undefined;
   }
+  const { through } = solved;
   const streams = branches.map((b) => {
     // A rest that is zero but for rounding is zero.
     const flow = b.share * through[b.from] + b.fixed;
@@ -65,6 +65,45 @@ export function balanceFlows(
     return { from: b.from, to: b.to, stream: b.stream, flow: Math.abs(flow) <= small ? 0 : flow };
   });
   return allPositive(streams, through, places, report, say) ? { through, streams } : undefined;
+}
+
+/** A value as the file would write it, for messages. */
+type Say = (si: number, dimension: Dimension) => string;
+
+interface Place {
+  readonly name: string;
+  readonly at: Span;
+}
+
+/** Shares and fixed flows are numbers, none below zero, and shares neither send more than there is nor leave some unsent. */
+function splitsPossible(network: Network, env: Float64Array, report: Report, say: Say): boolean {
+  let good = true;
+  const refuse: Report = (...problem) => {
+    good = false;
+    report(...problem);
+  };
+  for (const { name, streams, toAt } of [...network.feeds, ...network.compartments]) {
+    let total = 0;
+    for (const { split, to } of streams) {
+      if (!("value" in split)) continue;
+      const x = split.value.of(env);
+      const { at } = split.value;
+      if (split.is === "share") total += x;
+      if (!Number.isFinite(x)) {
+        refuse("not-finite", at, { what: `the ${split.is} from '${name}' to '${to}'`, infinite: !Number.isNaN(x) });
+      } else if (x < 0 && split.is === "share") {
+        refuse("share-range", at, { name, to, value: say(x, dimensions.ratio), recycle: undefined });
+      } else if (x < 0) {
+        const value = say(x, dimensions.flow);
+        refuse("negative-flow", at, { name: `from '${name}' to '${to}'`, value, exchange: false });
+      }
+    }
+    const open = streams.some(({ split }) => split.is === "rest" || split.is === "all") || streams.length === 0;
+    if (good && (open ? total > 1 + 1e-9 : Math.abs(total - 1) > 1e-9)) {
+      refuse("share-sum", toAt, { name, total: say(total, dimensions.ratio), rest: open });
+    }
+  }
+  return good;
 }
 
 function branchesOf(network: Network, index: ReadonlyMap<string, number>, env: Float64Array): Branch[] {
@@ -87,8 +126,12 @@ function branchesOf(network: Network, index: ReadonlyMap<string, number>, env: F
   });
 }
 
-/** Through-flows, or the index of a place in a circle whose flow cannot be told. */
-function solveThrough(size: number, branches: readonly Branch[], supply: Float64Array): Float64Array | number {
+/** Through-flows, or the places of a circle whose flow cannot be told. */
+function solveThrough(
+  size: number,
+  branches: readonly Branch[],
+  supply: Float64Array,
+): { through: Float64Array } | { stuck: Int32Array } {
   const graph = { size, from: branches.map((b) => b.from), to: branches.map((b) => b.to) };
   const into: Branch[][] = Array.from({ length: size }, () => []);
   for (const b of branches) into[b.to].push(b);
@@ -112,33 +155,39 @@ function solveThrough(size: number, branches: readonly Branch[], supply: Float64
     });
     if (n > 1 || matrix[0] !== 1) {
       const lu = factor(matrix, n);
-      if (lu === "singular") return group[0];
+      if (lu === "singular") return { stuck: group };
       solve(lu, rhs);
+      if (!rhs.every(Number.isFinite)) return { stuck: group };
     }
     group.forEach((node, i) => {
-      if (Number.isFinite(rhs[i])) through[node] = rhs[i];
+      through[node] = rhs[i];
     });
   }
-  return through;
+  return { through };
 }
 
+/** No `rest` is below zero. Where less than nothing arrives, the fault lies upstream and is told there. */
 function allPositive(
   streams: readonly SolvedStream[],
   through: Float64Array,
-  places: readonly { readonly name: string; readonly at: Span }[],
+  places: readonly Place[],
   report: Report,
-  say: (flow: number) => string,
+  say: Say,
 ): boolean {
-  let good = true;
-  for (const s of streams) {
-    if (s.flow >= 0) continue;
-    good = false;
-    const name = places[s.from].name;
-    const { split } = s.stream;
-    if (split.is === "rest") {
-      const fixed = streams.filter((o) => o.from === s.from && o !== s).reduce((sum, o) => sum + o.flow, 0);
-      report("fixed-flow-too-large", s.stream.at, { name, fixed: say(fixed), arrives: say(through[s.from]) });
-    } else report("negative-flow", s.stream.at, { name: `from '${name}' to '${s.stream.to}'`, value: say(s.flow) });
+  const negative = streams.filter((s) => !(s.flow >= 0));
+  const first = negative.filter((s) => through[s.from] >= 0);
+  for (const { from, stream } of first.length > 0 ? first : negative.slice(0, 1)) {
+    const others = streams.filter((o) => o.from === from && o.stream !== stream);
+    const split = others.find((o) => o.stream.split.is === "flow")?.stream.split;
+    report("fixed-flow-too-large", split && "value" in split ? split.value.at : stream.at, {
+      name: places[from].name,
+      fixed: say(
+        others.reduce((sum, o) => sum + o.flow, 0),
+        dimensions.flow,
+      ),
+      arrives: say(through[from], dimensions.flow),
+      several: others.length > 1,
+    });
   }
-  return good;
+  return negative.length === 0;
 }

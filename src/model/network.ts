@@ -42,6 +42,7 @@ export interface Feed {
   readonly flow: Value;
   readonly flowSlot: number;
   readonly streams: readonly Stream[];
+  readonly toAt: Span;
 }
 
 export interface Compartment {
@@ -80,6 +81,8 @@ export interface Exchange {
 export interface Requirement {
   readonly text: string;
   readonly at: Span;
+  readonly left: Value;
+  readonly right: Value;
   slack(env: ArrayLike<number>): number;
 }
 

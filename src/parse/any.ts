@@ -1,5 +1,9 @@
+import { checkTrial } from "../check/trial.js";
+import type { Trial } from "../model/trial.js";
 import type { Problem } from "../problems/problem.js";
 import { collector } from "../problems/report.js";
+import { decodeText } from "../read/decode.js";
+import { beside } from "../read/paths.js";
 import { checkShape, documentKind } from "../read/shape.js";
 import { child, type MapNode } from "../read/tree.js";
 import { readYaml } from "../read/yaml.js";
@@ -7,7 +11,7 @@ import type { DocumentKind } from "../schema/shape.js";
 import { parseChemistry } from "./chemistry.js";
 import { parseDuty } from "./duty.js";
 import { type NetworkDocument, parseNetwork } from "./network.js";
-import type { ParseOptions } from "./parsed.js";
+import { nothingToRead, type ParseOptions } from "./parsed.js";
 import { parseChange, parseStudy } from "./study.js";
 import { parseTrial } from "./trial.js";
 
@@ -35,8 +39,33 @@ export function parseAny(text: string, options: ParseOptions = {}): AnyDocument 
     checkShape(tree, "network", report);
     return { kind, network: undefined, problems };
   }
-  const parse = { trial: parseTrial, chemistry: parseChemistry, duty: parseDuty, study: parseStudy }[kind];
+  if (kind === "trial") {
+    const { document, problems } = parseTrial(text, options);
+    return {
+      kind,
+      network: undefined,
+      problems: document ? [...problems, ...vesselOf(tree, document, options)] : problems,
+    };
+  }
+  const parse = { chemistry: parseChemistry, duty: parseDuty, study: parseStudy }[kind];
   return { kind, network: undefined, problems: parse(text, options).problems };
 }
 
-const isChange = (tree: MapNode): boolean => child(tree, "change") !== undefined && child(tree, "feeds") === undefined;
+/** How a trial fits the vessel that it names, or what is wrong with that. */
+function vesselOf(tree: MapNode, trial: Trial, { path = "-", read = nothingToRead }: ParseOptions): Problem[] {
+  const { report, problems } = collector();
+  const node = child(tree, "vessel");
+  if (!node || trial.vessel === undefined) return problems;
+  const vessel = beside(path, trial.vessel);
+  const content = read(vessel);
+  if (content === undefined) {
+    report("file-missing", node.at, { file: trial.vessel });
+    return problems;
+  }
+  const parsed = parseNetwork(decodeText(content), { path: vessel, read });
+  if (!parsed.document) return parsed.problems;
+  checkTrial(parsed.document, trial, report);
+  return problems;
+}
+
+const isChange = (tree: MapNode): boolean => child(tree, "change") !== undefined;

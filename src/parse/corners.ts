@@ -1,29 +1,60 @@
-import { compile } from "../compile/compile.js";
+import { problemsAt } from "../compile/compile.js";
 import { evaluateNames } from "../compile/evaluate.js";
-import type { Network } from "../model/network.js";
+import type { Settings } from "../compile/plant.js";
+import type { Named, Network } from "../model/network.js";
 import type { Report } from "../problems/report.js";
+import type { Dimension } from "../units/dimension.js";
+import { formatQuantity } from "../units/format.js";
 
 /** Above this many parameters only the corners with one parameter moved are looked at. */
 const fewParameters = 8;
 
 /** Warns once where a corner of the bounds that `requires:` allows makes a volume or flow impossible. */
 export function cornerWarnings(network: Network, report: Report): void {
-  const env = evaluateNames(network);
-  const moved = network.names.flatMap((n) =>
-    n.between ? [{ name: n.name, at: n.at, ends: n.between.map((b) => b.of(env)) }] : [],
-  );
-  const count = moved.length <= fewParameters ? 2 ** moved.length : 2 * moved.length;
-  for (let c = 0; c < count; c++) {
-    const chosen =
-      moved.length <= fewParameters
-        ? moved.map((m, i) => ({ ...m, end: (c >> i) & 1 }))
-        : [{ ...moved[c >> 1], end: c & 1 }];
-    const settings = Object.fromEntries(chosen.map((m) => [m.name, m.ends[m.end]]));
+  const moved = network.names.filter((n) => n.between);
+  const ends = endsOf(network, moved);
+  const why = (settings: Settings): string | undefined => {
     const values = evaluateNames(network, settings);
-    if (network.requires.some((r) => !(r.slack(values) > 0))) continue;
-    const [problem] = compile(network, settings).problems;
-    if (!problem) continue;
-    report("bound-corner", moved[0].at, { name: chosen.map((m) => m.name).join(", "), why: problem.message });
+    if (network.requires.some((r) => !(r.slack(values) > 0))) return undefined;
+    return problemsAt(network, settings)[0]?.message;
+  };
+  for (const settings of cornersOf(moved, ends)) {
+    if (why(settings) === undefined) continue;
+    const least = withoutIdle(settings, why);
+    const corner = moved.flatMap((n) =>
+      n.name in least
+        ? `${n.name} = ${formatQuantity(least[n.name], network.units.unitFor(n.value.dimension as Dimension), 6)}`
+        : [],
+    );
+    const first = moved.find((n) => n.name in least) ?? moved[0];
+    const bound = first.between?.[least[first.name] === ends.get(first.name)?.[0] ? 0 : 1];
+    report("bound-corner", bound?.at ?? first.at, { corner, why: why(least) ?? "" });
     return;
   }
+}
+
+function endsOf(network: Network, moved: readonly Named[]): Map<string, readonly number[]> {
+  const env = evaluateNames(network);
+  return new Map(moved.map((n) => [n.name, (n.between ?? []).map((b) => b.of(env))]));
+}
+
+function* cornersOf(moved: readonly Named[], ends: ReadonlyMap<string, readonly number[]>): Generator<Settings> {
+  const end = (n: Named, which: number): [string, number] => [n.name, ends.get(n.name)?.[which] ?? Number.NaN];
+  if (moved.length > fewParameters) {
+    for (const n of moved) for (const which of [0, 1]) yield Object.fromEntries([end(n, which)]);
+  } else {
+    for (let c = 1; c <= 2 ** moved.length; c++) {
+      yield Object.fromEntries(moved.map((n, i) => end(n, (c >> i) & 1)));
+    }
+  }
+}
+
+/** The corner without the parameters that may as well stay at their start. */
+function withoutIdle(settings: Settings, why: (settings: Settings) => string | undefined): Settings {
+  let least = settings;
+  for (const name of Object.keys(settings)) {
+    const { [name]: _, ...fewer } = least;
+    if (why(fewer) !== undefined) least = fewer;
+  }
+  return least;
 }

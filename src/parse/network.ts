@@ -4,10 +4,10 @@ import { evaluateNames } from "../compile/evaluate.js";
 import type { Network } from "../model/network.js";
 import type { Problem } from "../problems/problem.js";
 import { collector, hasErrors } from "../problems/report.js";
-import { child, type MapNode, textOf } from "../read/tree.js";
+import { type MapNode, textOf } from "../read/tree.js";
 import { resolveNetwork } from "../resolve/network.js";
 import { cornerWarnings } from "./corners.js";
-import { type Parsed, type ParseOptions, parseDocument } from "./parsed.js";
+import { type Meaning, type Parsed, type ParseOptions, parseDocument } from "./parsed.js";
 
 /** A network with the tree that it came from, which a study's changes are merged into. */
 export interface NetworkDocument extends Network {
@@ -20,14 +20,18 @@ export interface NetworkDocument extends Network {
  */
 export function parseNetwork(text: string, options: ParseOptions = {}): Parsed<NetworkDocument> {
   const path = options.path ?? "network.yaml";
-  return parseDocument("network", text, path, (tree, report, adopt) => {
-    if (child(tree, "change") && !child(tree, "feeds")) {
-      report("change-only", child(tree, "change")?.at ?? tree.at, { title: textOf(tree, "network") ?? "" });
+  const meaning: Meaning<NetworkDocument> = (tree, report, adopt) => {
+    const change = tree.entries.find(({ key }) => key.text === "change");
+    if (change) {
+      report("change-only", change.key.at, { title: textOf(tree, "network") ?? "" });
       return undefined;
     }
     const { network, problems } = networkFromTree(tree, path);
     adopt(problems);
     return network;
+  };
+  return parseDocument("network", text, path, meaning, (tree, report) => {
+    resolveNetwork(tree, path, report);
   });
 }
 

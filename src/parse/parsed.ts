@@ -1,9 +1,10 @@
 import type { Problem } from "../problems/problem.js";
 import { collector, hasErrors, type Report } from "../problems/report.js";
-import { checkShape } from "../read/shape.js";
+import { checkShape, documentKind } from "../read/shape.js";
 import type { MapNode } from "../read/tree.js";
 import { readYaml } from "../read/yaml.js";
 import type { DocumentKind } from "../schema/shape.js";
+import type { Span } from "../text/source.js";
 
 /** Gives the content of a file by its path, or undefined where there is none. Synchronous; the core reads no files itself. */
 export type Read = (path: string) => string | Uint8Array | undefined;
@@ -20,24 +21,40 @@ export interface Parsed<T> {
   readonly problems: Problem[];
 }
 
+/** What a tree means; `adopt` takes over the problems of documents that it names. */
+export type Meaning<T> = (
+  tree: MapNode,
+  report: Report,
+  adopt: (problems: readonly Problem[]) => void,
+) => T | undefined;
+
 /**
  * text -> tree -> shape -> meaning; the same for all five documents.
  * @param meaning runs only on a tree whose shape is right; what it gives counts only where no error was reported
+ * @param glance  finds what else is wrong in a tree whose shape is not right; must bear any tree
  */
 export function parseDocument<T>(
   kind: DocumentKind,
   text: string,
   path: string,
-  meaning: (tree: MapNode, report: Report, adopt: (problems: readonly Problem[]) => void) => T | undefined,
+  meaning: Meaning<T>,
+  glance?: (tree: MapNode, report: Report) => void,
 ): Parsed<T> {
   const { report, problems } = collector();
   const tree = readYaml({ path, text }, report);
   let document: T | undefined;
   if (tree && checkShape(tree, kind, report)) {
     document = meaning(tree, report, (more) => problems.push(...more));
+  } else if (tree && glance && documentKind(tree) === kind) {
+    const more = collector();
+    glance(tree, more.report);
+    // What stands at a place that is already found fault with is an echo.
+    problems.push(...more.problems.filter((p) => !problems.some((q) => overlap(p.at, q.at))));
   }
   return { document: hasErrors(problems) ? undefined : document, problems: inOrder(problems) };
 }
+
+const overlap = (a: Span, b: Span): boolean => a.from < b.to && b.from < a.to;
 
 /** File by file in the order first met, each in the order of its lines. */
 function inOrder(problems: readonly Problem[]): Problem[] {

@@ -150,7 +150,9 @@ function wrongShape(here: Located, report: Report, finding: MakeFinding): Findin
     return finding(here.mark, () => report("empty-value", here.mark, { key: name, example }));
   const at = firstLine(node);
   if (shape?.is === "whole" && node.type === "scalar")
-    return finding(at, () => report("not-whole", at, { key: name, found: node.text, atLeast: shape.atLeast }));
+    return finding(at, () =>
+      report("not-whole", at, { key: name, found: node.text, atLeast: shape.atLeast, atMost: shape.atMost }),
+    );
   const want = shape ? wanted(shape) : "something else";
   return finding(at, () => report("wrong-shape", at, { key: name, found: found(node), wanted: want, example }));
 }

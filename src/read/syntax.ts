@@ -52,12 +52,22 @@ function toLineEnd(at: Span): Span {
   return { ...at, to: at.from + Math.max(1, rest.length) };
 }
 
+/** The same, or the first line after it that holds more than a comment. */
+function nextText(at: Span): Span {
+  const { text } = at.source;
+  if (!/^\s*(#|$)/.test(text.slice(at.from, at.to))) return at;
+  const [, indent, line] = /^([ \t]*)([^\s#].*?)\s*$/m.exec(text.slice(at.from)) ?? [];
+  if (line === undefined) return at;
+  const from = text.indexOf(indent + line, at.from) + indent.length;
+  return { ...at, from, to: from + line.length };
+}
+
 const words: Partial<Record<ErrorCode, (fault: SyntaxFault) => void>> = {
   TAB_AS_INDENT: ({ at, report }) => report("tab-indent", at, {}),
   BAD_INDENT: ({ at, here, report }) => {
     const before = at.source.text.slice(lineStart(at.source.text, at.from), at.from + 1);
     if (before.includes("\t")) report("tab-indent", at, {});
-    else report("bad-indent", here, {});
+    else report("bad-indent", nextText(here), {});
   },
   MULTIPLE_DOCS: ({ here, report }) => report("two-documents", here, {}),
   BAD_SCALAR_START: ({ at, report }) => reportLeading(at, report),

@@ -113,11 +113,9 @@ function details(
   const about = textOf(d.details, "about");
   const node = child(d.details, "between");
   let between: [Value, Value] | undefined;
-  if (node?.type === "list" && node.items.length === 2) {
+  if (node?.type === "list") {
     const [low, high] = node.items.map((item) => resolveValue(item, value.dimension, scope, report));
     if (low && high) between = [low, high];
-  } else if (node) {
-    report("bounds-shape", node.at, { name: d.name });
   }
   return { between, spacing, about };
 }

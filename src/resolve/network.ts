@@ -20,8 +20,10 @@ export function resolveNetwork(tree: MapNode, path: string, report: Report): Net
   const feeds = entriesOf(child(tree, "feeds")).flatMap(({ key, value }): Feed[] => {
     checkName(key, report);
     const named = names.find((n) => n.role === "feed-flow" && n.name === `${key.text}.flow`);
-    const streams = resolveStreams(child(value, "to"), key.text, scope, report);
-    return named ? [{ name: key.text, at: key.at, flow: named.value, flowSlot: named.slot, streams }] : [];
+    const streams = resolveStreams(child(value, "to"), scope, report);
+    if (!named) return [];
+    const toAt = child(value, "to")?.at ?? key.at;
+    return [{ name: key.text, at: key.at, flow: named.value, flowSlot: named.slot, streams, toAt }];
   });
   const compartments = entriesOf(child(tree, "compartments")).flatMap(({ key, value }) => {
     checkName(key, report);
@@ -33,7 +35,7 @@ export function resolveNetwork(tree: MapNode, path: string, report: Report): Net
     return [{ name: item.text, at: item.at }];
   });
   const { requires, requireNames } = resolveRequirements(child(tree, "requires"), scope, report);
-  const checks = resolveChecks(child(tree, "checks"), scope, report);
+  const { checks, checkNames } = resolveChecks(child(tree, "checks"), scope, report);
   const title = child(tree, "network");
   const values = valuesOf(
     feeds,
@@ -52,7 +54,9 @@ export function resolveNetwork(tree: MapNode, path: string, report: Report): Net
     outlets,
     requires,
     checks,
-    used: new Set([...values, ...names.flatMap((n) => n.between ?? [])].flatMap((v) => v.uses).concat(requireNames)),
+    used: new Set(
+      [...values, ...names.flatMap((n) => n.between ?? [])].flatMap((v) => v.uses).concat(requireNames, checkNames),
+    ),
     units: unitBook(values, feeds[0]?.flow),
   };
 }
@@ -84,7 +88,7 @@ function resolveCompartment(
     kind,
     values,
     counts,
-    streams: resolveStreams(child(node, "to"), name, scope, report),
+    streams: resolveStreams(child(node, "to"), scope, report),
     exchanges: resolveExchanges(child(node, "exchange"), scope, report),
     toAt: child(node, "to")?.at ?? at,
   };

@@ -24,7 +24,10 @@ export function resolveRequirements(
     if (!left || !right) return [];
     requireNames.push(...left.uses, ...right.uses);
     const turn = sign.startsWith("<") ? 1 : -1;
-    return [{ text: item.text, at: item.at, slack: (env) => turn * (right.of(env) - left.of(env)) }];
+    // Where the sides may be equal, equal sides must show as positive.
+    const atLeast = sign.endsWith("=") ? Number.MIN_VALUE : 0;
+    const slack = (env: ArrayLike<number>): number => turn * (right.of(env) - left.of(env)) || atLeast;
+    return [{ text: item.text, at: item.at, left, right, slack }];
   });
   return { requires, requireNames };
 }

@@ -5,15 +5,11 @@ import { dimensions } from "../units/dimension.js";
 import { resolveValue, type Scope } from "./value.js";
 
 /** A `to:`: one name takes all, a map splits. Names are looked up later, when all are known. */
-export function resolveStreams(node: Tree | undefined, from: string, scope: Scope, report: Report): Stream[] {
+export function resolveStreams(node: Tree | undefined, scope: Scope, report: Report): Stream[] {
   if (!node || node.type === "list") return [];
   if (node.type === "scalar") return node.empty ? [] : [{ to: node.text, at: node.at, split: { is: "all" } }];
   const streams: Stream[] = [];
   for (const { key, value } of node.entries) {
-    if (streams.some((s) => s.to === key.text)) {
-      report("stream-twice", key.at, { from, to: key.text });
-      continue;
-    }
     if (value.type === "scalar" && value.text === "rest") {
       streams.push({ to: key.text, at: key.at, split: { is: "rest" } });
       continue;

@@ -1,16 +1,22 @@
 import { entry } from "../problem.js";
 
+const quoted = (names: readonly string[]): string => names.map((n) => `'${n}'`).join(", ");
+
 /** Streams, flows and volumes. */
 export const flowEntries = {
-  "share-sum": entry<{ name: string; total: string }>({
+  "share-sum": entry<{ name: string; total: string; rest: boolean }>({
     severity: "error",
-    says: ({ name, total }) => `shares out of '${name}' add to ${total}`,
-    fix: "write `rest` for one of them, or make them add to 100 %",
+    says: ({ name, total, rest }) => `shares out of '${name}' add to ${total}${rest ? " and leave no `rest`" : ""}`,
+    fix: ({ rest }) =>
+      rest ? "lower them to 100 % or less together" : "write `rest` in place of one of them, or make them add to 100 %",
   }),
-  "share-range": entry<{ name: string; to: string; value: string }>({
+  "share-range": entry<{ name: string; to: string; value: string; recycle: string | undefined }>({
     severity: "error",
     says: ({ name, to, value }) => `the share from '${name}' to '${to}' is ${value}`,
-    fix: "a share lies between 0 % and 100 %",
+    fix: ({ value, recycle }) =>
+      `a share is of all that leaves, so it lies between 0 % and 100 %${
+        recycle ? `: ${value} of what goes on is a share of ${recycle}` : ""
+      }`,
   }),
   "rest-twice": entry<{ name: string }>({
     severity: "error",
@@ -19,23 +25,32 @@ export const flowEntries = {
   }),
   "rest-missing": entry<{ name: string }>({
     severity: "error",
-    says: ({ name }) => `'${name}' sends a fixed flow but says nothing of the rest`,
-    fix: "send `rest` somewhere, for example {loop: 4 L/min, out: rest}",
+    says: ({ name }) => `'${name}' sends a fixed flow, but no stream takes the rest`,
+    fix: "write `rest` for one of its streams, such as {loop: 4 L/min, out: rest}",
   }),
-  "fixed-flow-too-large": entry<{ name: string; fixed: string; arrives: string }>({
+  "fixed-flow-too-large": entry<{ name: string; fixed: string; arrives: string; several: boolean }>({
     severity: "error",
-    says: ({ name, fixed, arrives }) => `'${name}' should send ${fixed} but only ${arrives} arrives there`,
-    fix: "lower the fixed flow, or bring more to it",
+    says: ({ name, fixed, arrives, several }) =>
+      `'${name}' should send ${fixed}${several ? " in all" : ""} beside \`rest\`, but only ${arrives} arrives there`,
+    fix: ({ arrives }) => `send less than ${arrives}, or bring more to it`,
   }),
   "negative-volume": entry<{ name: string; value: string }>({
     severity: "error",
     says: ({ name, value }) => `the volume of '${name}' is ${value}`,
-    fix: "a volume cannot be below zero; look at the values it is made of",
+    fix: "a volume cannot be below zero; look at the values that it is made of",
   }),
-  "negative-flow": entry<{ name: string; value: string }>({
+  "negative-flow": entry<{ name: string; value: string; exchange: boolean }>({
     severity: "error",
     says: ({ name, value }) => `the flow ${name} is ${value}`,
-    fix: "a flow cannot be below zero; turn the stream round instead",
+    fix: ({ exchange }) =>
+      exchange
+        ? "an exchange flows both ways, so it has no sign: write it as a flow above zero"
+        : "a flow cannot be below zero; look at the values that it is made of, or write the stream the other way round",
+  }),
+  "not-finite": entry<{ what: string; infinite: boolean }>({
+    severity: "error",
+    says: ({ what, infinite }) => `${what} ${infinite ? "is infinite" : "cannot be computed"}`,
+    fix: "look for a division by zero, a root or logarithm of a negative number, or a power that grows too large in what it is made of",
   }),
   "feed-zero": entry<{ name: string; value: string }>({
     severity: "error",
@@ -52,40 +67,49 @@ export const flowEntries = {
     says: () => "the network has no outlet",
     fix: "declare one, such as `outlets: [product]`, and send a stream to it",
   }),
-  "no-way-out": entry<{ name: string }>({
+  "no-way-out": entry<{ name: string; feed: boolean }>({
     severity: "error",
-    says: ({ name }) => `nothing leaves '${name}'`,
-    fix: "give it a `to:`; if the flow never reaches it, make it `kind: dead`",
+    says: ({ name, feed }) =>
+      feed ? `the feed '${name}' goes nowhere` : `what streams bring into '${name}' has no way out`,
+    fix: ({ feed }) =>
+      feed
+        ? "say under `to:` where it goes"
+        : "say under `to:` where it goes; a quiet corner takes an `exchange`, not a stream",
   }),
-  "dead-with-streams": entry<{ name: string }>({
+  "dead-with-streams": entry<{ name: string; from: string }>({
     severity: "error",
-    says: ({ name }) => `'${name}' is dead volume, so no stream can enter or leave it`,
-    fix: "take the stream out, or make it `kind: stirred`",
+    says: ({ name, from }) => `'${from}' sends a stream into '${name}', which is dead volume`,
+    fix: ({ name }) => `take the stream out, or give '${name}' another \`kind\` and a \`to\``,
   }),
   "closed-loop": entry<{ names: readonly string[] }>({
     severity: "error",
-    says: ({ names }) => `what enters ${names.map((n) => `'${n}'`).join(", ")} never reaches an outlet`,
-    fix: "send a share of it to an outlet",
+    says: ({ names }) =>
+      names.length === 1
+        ? `all that leaves ${quoted(names)} returns to it, so that none of it reaches an outlet`
+        : `streams go round among ${quoted(names)} and never reach an outlet`,
+    fix: "send a share of one of them on towards an outlet",
   }),
-  unreachable: entry<{ name: string }>({
+  "loop-unbounded": entry<{ names: readonly string[] }>({
     severity: "error",
-    says: ({ name }) => `no stream reaches '${name}'`,
-    fix: "send a stream to it or give it an exchange; if the flow never reaches it, make it `kind: dead`",
+    says: ({ names }) => `the flow that goes round through ${quoted(names)} has no end: no share of it leaves`,
+    fix: "let a share above 0 % of it go on towards an outlet; fixed flows alone do not settle it",
   }),
-  "into-feed": entry<{ name: string; from: string }>({
+  unreachable: entry<{ names: readonly string[] }>({
+    severity: "error",
+    says: ({ names }) => `no stream reaches ${quoted(names)}`,
+    fix: ({ names }) =>
+      `send a stream to ${names.length === 1 ? "it" : "one of them"} or give it an exchange; if the flow never gets there, make it \`kind: dead\``,
+  }),
+  "into-feed": entry<{ name: string; from: string; enters: string | undefined }>({
     severity: "error",
     says: ({ name, from }) => `'${from}' sends a stream into the feed '${name}'`,
-    fix: "send it to the compartment that the feed enters",
-  }),
-  "stream-twice": entry<{ from: string; to: string }>({
-    severity: "error",
-    says: ({ from, to }) => `'${from}' sends two streams to '${to}'`,
-    fix: "add them into one",
+    fix: ({ enters }) =>
+      enters ? `send it to '${enters}', which the feed enters` : "send it to the compartment that the feed enters",
   }),
   "exchange-partner": entry<{ name: string; partner: string; why: string }>({
     severity: "error",
     says: ({ name, partner, why }) => `'${name}' cannot exchange with '${partner}': ${why}`,
-    fix: "exchange works between two single stirred tanks; write it on one of them",
+    fix: "exchange works between two different tanks of `kind: stirred` without `repeat`; write it on one of them",
   }),
   "exchange-twice": entry<{ name: string; partner: string }>({
     severity: "error",
@@ -94,7 +118,7 @@ export const flowEntries = {
   }),
   "outlet-dry": entry<{ name: string }>({
     severity: "error",
-    says: ({ name }) => `no stream reaches the outlet '${name}'`,
+    says: ({ name }) => `nothing flows to the outlet '${name}'`,
     fix: "send a stream to it or take it out of `outlets`",
   }),
   "share-all": entry<{ name: string; parameter: string }>({

@@ -1,5 +1,8 @@
 import { entry } from "../problem.js";
 
+/** So many names can be listed in a fix. */
+const fewNames = 12;
+
 const orNearest = (nearest: string | undefined, otherwise: string) =>
   nearest ? `did you mean '${nearest}'?` : otherwise;
 
@@ -13,7 +16,7 @@ export const nameEntries = {
   "reserved-name": entry<{ name: string }>({
     severity: "error",
     says: ({ name }) => `'${name}' is a word of the language and cannot be a name`,
-    fix: ({ name }) => `choose another name, such as 'my-${name}'`,
+    fix: ({ name }) => `choose another name, such as '${name}-1'`,
   }),
   "name-taken": entry<{ name: string; by: string }>({
     severity: "error",
@@ -22,13 +25,30 @@ export const nameEntries = {
   }),
   "circular-names": entry<{ circle: readonly string[] }>({
     severity: "error",
-    says: ({ circle }) => `these values need one another in a circle: ${circle.join(" -> ")}`,
-    fix: "give one of them a value of its own",
+    says: ({ circle }) =>
+      circle.length === 2
+        ? `the value of '${circle[0]}' is made of '${circle[0]}' itself`
+        : `these values need one another in a circle: ${circle.join(" -> ")}`,
+    fix: ({ circle }) =>
+      circle.length === 2
+        ? "give it a value made of numbers and other names"
+        : "give one of them a value made of numbers and other names",
   }),
-  "unknown-place": entry<{ name: string; nearest: string | undefined; wanted: string }>({
+  "unknown-place": entry<{
+    name: string;
+    nearest: string | undefined;
+    wanted: string;
+    known?: readonly string[];
+  }>({
     severity: "error",
     says: ({ name, wanted }) => `there is no ${wanted} '${name}'`,
-    fix: ({ nearest, wanted }) => orNearest(nearest, `name a ${wanted} that the file declares`),
+    fix: ({ nearest, wanted, known = [] }) =>
+      orNearest(
+        nearest,
+        known.length > 0 && known.length <= fewNames
+          ? `what may stand here: ${known.map((k) => `'${k}'`).join(", ")}`
+          : `name a ${wanted} that is declared`,
+      ),
   }),
   "unused-name": entry<{ name: string; role: string }>({
     severity: "warning",
@@ -43,13 +63,14 @@ export const nameEntries = {
   }),
   "bounds-reversed": entry<{ name: string; low: string; high: string }>({
     severity: "error",
-    says: ({ name, low, high }) => `the bounds of '${name}' run backwards: ${low} is not below ${high}`,
-    fix: "write the smaller bound first",
-  }),
-  "bounds-shape": entry<{ name: string }>({
-    severity: "error",
-    says: ({ name }) => `\`between\` of '${name}' needs two bounds`,
-    fix: "write the smaller and the larger, such as [5 L, 480 L]",
+    says: ({ name, low, high }) =>
+      low === high
+        ? `both bounds of '${name}' are ${low}`
+        : `the bounds of '${name}' run backwards: ${low} is not below ${high}`,
+    fix: ({ low, high }) =>
+      low === high
+        ? "widen `between`; what must not move belongs under `constants`"
+        : `write the smaller bound first: \`between: [${high}, ${low}]\``,
   }),
   "log-bounds": entry<{ name: string }>({
     severity: "error",
@@ -61,14 +82,14 @@ export const nameEntries = {
     says: ({ text }) => `'${text}' is not a comparison`,
     fix: "write two sides with < or > between them, such as riser + stagnant < total",
   }),
-  "requirement-broken": entry<{ text: string }>({
+  "requirement-broken": entry<{ text: string; left: string; right: string }>({
     severity: "error",
-    says: ({ text }) => `the start values break the requirement '${text}'`,
+    says: ({ text, left, right }) => `the start values break '${text}': left is ${left}, right ${right}`,
     fix: "change the start values so that it holds",
   }),
-  "bound-corner": entry<{ name: string; why: string }>({
+  "bound-corner": entry<{ corner: readonly string[]; why: string }>({
     severity: "warning",
-    says: ({ name, why }) => `a corner of the bounds breaks the vessel: ${why} ('${name}')`,
-    fix: "narrow `between`, or say what must hold under `requires`; a fit keeps away from such corners by itself",
+    says: ({ corner, why }) => `inside its bounds a fit may meet ${corner.join(", ")}: then ${why}`,
+    fix: "narrow `between`, or say under `requires` what must hold (a fit passes over such values either way)",
   }),
 } as const;

@@ -74,9 +74,10 @@ export const shapeEntries = {
     says: (d) => `'${d.found}' is no choice for '${d.key}'`,
     fix: (d) => (d.nearest ? `did you mean \`${d.nearest}\`?` : `write ${or(d.of.map((w) => `\`${w}\``))}`),
   }),
-  "not-whole": entry<{ key: string; found: string; atLeast: number }>({
+  "not-whole": entry<{ key: string; found: string; atLeast: number; atMost: number | undefined }>({
     severity: "error",
-    says: (d) => `'${d.key}' is '${d.found}', not a whole number from ${d.atLeast}`,
+    says: (d) =>
+      `'${d.key}' is '${d.found}', not a whole number from ${d.atLeast}${d.atMost === undefined ? "" : ` to ${d.atMost}`}`,
     fix: (d) => `write a whole number such as \`${d.key}: ${Math.max(d.atLeast, 1)}\`, with no unit and no decimals`,
   }),
   "wrong-length": entry<{ key: string; found: number; wanted: number; comma: boolean }>({

@@ -4,12 +4,12 @@ import { entry } from "../problem.js";
 export const studyEntries = {
   "no-change": entry<{ title: string }>({
     severity: "error",
-    says: ({ title }) => `'${title}' stands under \`changes\` but has no \`change:\``,
-    fix: "write what is different, such as change: {parameters: {bypass: {value: 2 %}}}",
+    says: ({ title }) => `'${title}' is listed under \`changes\`, but has no \`change:\``,
+    fix: "keep in it only what is different, such as `change: {parameters: {bypass: {value: 2 %}}}`; a whole network belongs under `rivals`",
   }),
   "change-only": entry<{ title: string }>({
     severity: "error",
-    says: ({ title }) => `'${title}' is a change, not a vessel`,
-    fix: "name the network itself here; a study compares changes under `changes`",
+    says: ({ title }) => `'${title}' is a change to a vessel, not a vessel`,
+    fix: "name the network that it changes in its place; a study lists changes under `changes`",
   }),
 } as const;

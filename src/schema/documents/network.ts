@@ -145,7 +145,7 @@ const checks: KeyShape = {
         within: {
           shape: quantity("ratio"),
           says: "How far it may be off, relative to `equals`.",
-          default: "1e-9",
+          default: "0.1 %",
           example: "0.01 %",
         },
       },

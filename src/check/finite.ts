@@ -1,0 +1,31 @@
+import type { Value } from "../model/value.js";
+import type { Span } from "../text/source.js";
+import type { Rule } from "./rule.js";
+
+/** Every value can be computed at the start values. What is made of a name that cannot is not told again. */
+export const finiteValues: Rule = (network, report, { env }) => {
+  const bad = new Set<string>();
+  const look = (what: string, value: Value, at: Span = value.at): boolean => {
+    const x = value.of(env);
+    if (Number.isFinite(x)) return true;
+    if (!value.uses.some((name) => bad.has(name))) report("not-finite", at, { what, infinite: !Number.isNaN(x) });
+    return false;
+  };
+  const bySlot = new Map(network.names.map((n) => [n.slot, n]));
+  for (const slot of network.order) {
+    const n = bySlot.get(slot);
+    if (!n) continue;
+    const what = n.role === "feed-flow" ? `the flow of '${n.name.replace(/\.flow$/, "")}'` : `'${n.name}'`;
+    if (!look(what, n.value)) bad.add(n.name);
+    for (const bound of n.between ?? []) look(`a bound of '${n.name}'`, bound);
+  }
+  for (const c of network.compartments) {
+    for (const [key, value] of Object.entries(c.values)) look(`the ${key} of '${c.name}'`, value);
+    for (const e of c.exchanges) look(`the flow between '${c.name}' and '${e.partner}'`, e.flow);
+  }
+  for (const node of [...network.feeds, ...network.compartments]) {
+    for (const { split, to } of node.streams) {
+      if ("value" in split) look(`the ${split.is} from '${node.name}' to '${to}'`, split.value);
+    }
+  }
+};

@@ -1,0 +1,18 @@
+import type { Rule } from "./rule.js";
+
+/** What `checks:` speak of is there. */
+export const checkSubjects: Rule = (network, report, { nearest }) => {
+  const names = (places: readonly { readonly name: string }[]): string[] => places.map((p) => p.name);
+  const subjects = {
+    "mean-time": { wanted: "outlet", known: ["all", ...names(network.outlets)] },
+    volume: { wanted: "compartment", known: ["all", ...names(network.compartments)] },
+    flow: {
+      wanted: "compartment, feed or outlet",
+      known: names([...network.feeds, ...network.compartments.filter((c) => c.kind.flows), ...network.outlets]),
+    },
+  };
+  for (const { what, of, ofAt } of network.checks) {
+    const { wanted, known } = subjects[what];
+    if (!known.includes(of)) report("unknown-place", ofAt, { name: of, wanted, nearest: nearest(of, known), known });
+  }
+};
