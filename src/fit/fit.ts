@@ -77,7 +77,7 @@ export function fitWith(
 }
 
 /** Points that the search for the right valley looks at; the last descent takes them all. */
-const searchPoints = 2000;
+const searchPoints = 600;
 
 function search(setup: Setup, problem: LinearProblem, file: Float64Array, plan: StartPlan, watch: Watch): SearchResult {
   const blocks = thinned(setup.blocks, searchPoints);
