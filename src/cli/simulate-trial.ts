@@ -1,5 +1,6 @@
 import { checkTrial } from "../check/trial.js";
 import type { Plant } from "../compile/plant.js";
+import { productUnit } from "../data/clean.js";
 import { settingsOfDay } from "../fit/settings.js";
 import type { Network } from "../model/network.js";
 import type { Trial } from "../model/trial.js";
@@ -9,11 +10,11 @@ import { moments } from "../simulate/moments.js";
 import { settlingTime } from "../simulate/tracer.js";
 import { trialResponse } from "../simulate/trial.js";
 import { formatNumber, formatQuantity } from "../units/format.js";
-import { inUnit } from "../units/unit.js";
+import { inUnit, type Unit } from "../units/unit.js";
 import type { Context } from "./context.js";
 import { curvesCsv } from "./csv.js";
 import { engineNamed, engines, largestDifference } from "./engines.js";
-import { pure, series } from "./json/quantity.js";
+import { pure, quantity, series } from "./json/quantity.js";
 import { balanceJson, momentsJson } from "./json/tracer.js";
 import { type Outcome, UsageError } from "./outcome.js";
 import { settingsFrom } from "./settings.js";
@@ -22,6 +23,7 @@ import { blocks, table } from "./text/table.js";
 import { balanceLine, momentsTable } from "./text/tracer.js";
 import { type Clock, clockFrom } from "./times.js";
 import { trialBalance } from "./trial-balance.js";
+import { type TrialSpike, trialSpikes } from "./trial-spikes.js";
 
 /** `simulate --trial`: what every probe of a trial would read. Times count from the first injection. */
 export function simulateTrial(network: Network, options: SimulateOptions, { inputs, io }: Context): Outcome {
@@ -40,8 +42,10 @@ export function simulateTrial(network: Network, options: SimulateOptions, { inpu
     ? trialResponse(plant, trial, wanted, engines.find((e) => e !== engine) ?? engines[1])
     : undefined;
   const difference = other && largestDifference(curves, other);
-  const balance = trialBalance(plant, trial, origin + clock.si[clock.si.length - 1], engine);
+  const until = origin + clock.si[clock.si.length - 1];
+  const balance = trialBalance(plant, trial, until, engine);
   const places = placesOf(plant, trial);
+  const spikes = trial.readings.map((r) => trialSpikes(plant, trial, r, until));
   if (options.output !== undefined) {
     const unit = trial.readings[0]?.unit.name || "1";
     if (trial.readings.some((r) => (r.unit.name || "1") !== unit)) {
@@ -49,9 +53,17 @@ export function simulateTrial(network: Network, options: SimulateOptions, { inpu
     }
     const rows = trial.readings.map((r, i) => {
       const value = curves[i].map((v) => inUnit(v, r.unit));
-      return { at: r.at, time: clock.shown, value, spikes: [] };
+      const area = perTime(r.unit, clock.unit);
+      const marks = spikes[i].map((s) => ({
+        time: inUnit(s.time - origin, clock.unit),
+        area: inUnit(s.area, area),
+      }));
+      return { at: r.at, time: clock.shown, value, spikes: marks };
     });
-    io.write(options.output, curvesCsv(rows, { time: clock.unit.name, value: unit, spike: unit }));
+    io.write(
+      options.output,
+      curvesCsv(rows, { time: clock.unit.name, value: unit, spike: `${unit} ${clock.unit.name}` }),
+    );
   }
   const failed = curves.some((c) => c.some(Number.isNaN));
   return {
@@ -59,6 +71,7 @@ export function simulateTrial(network: Network, options: SimulateOptions, { inpu
     text: blocks(
       `${network.title}: ${trial.title}, ${clock.shown.length} times to ${formatNumber(clock.shown[clock.shown.length - 1])} ${clock.unit.name} after the injection (${engine.name})`,
       readingsTable(trial, curves, clock),
+      spikesText(trial, spikes, origin, clock),
       `  residence time from ${trial.injections[0].at}\n${momentsTable(places, clock.unit)}`,
       balance ? balanceLine(balance.balance, balance.unit) : "",
       difference === undefined ? "" : `  engines: they differ by at most ${formatNumber(difference, 2)} of the peak`,
@@ -72,6 +85,10 @@ export function simulateTrial(network: Network, options: SimulateOptions, { inpu
         at: r.at,
         time: { unit: clock.unit.name, values: clock.shown },
         value: series(curves[i], r.unit),
+        spikes: spikes[i].map((s) => ({
+          time: quantity(s.time - origin, clock.unit),
+          area: quantity(s.area, perTime(r.unit, clock.unit)),
+        })),
       })),
       moments: places.map((p) => momentsJson(p, clock.unit)),
       balance: balance ? balanceJson(balance.balance, balance.unit) : null,
@@ -113,4 +130,18 @@ function readingsTable(trial: Trial, curves: readonly Float64Array[], clock: Clo
       return [r.at, formatQuantity(curves[i][top], r.unit), formatNumber(clock.shown[top])];
     }),
   );
+}
+
+/** The unit of a spike's area: concentration times time. */
+const perTime = (value: Unit, time: Unit): Unit => productUnit(`${value.name || "1"} ${time.name}`, value, time);
+
+/** Tracer that no curve shows, the first few spikes. */
+function spikesText(trial: Trial, spikes: readonly TrialSpike[][], origin: number, clock: Clock): string {
+  const lines = trial.readings.flatMap((r, i) =>
+    spikes[i].slice(0, 4).map((s) => {
+      const area = formatQuantity(s.area, perTime(r.unit, clock.unit));
+      return `  undispersed at ${r.at}: ${area} all at once at ${formatNumber(inUnit(s.time - origin, clock.unit))} ${clock.unit.name}`;
+    }),
+  );
+  return lines.join("\n");
 }

@@ -143,6 +143,13 @@ describe("a trial", () => {
     expect(at(document, "balance.closure")).toBeLessThan(1e-9);
   });
 
+  test("an instant pulse that slips past is a spike: dose times share over flow", async () => {
+    const { document } = await json(["simulate", "vessel.yaml", "--trial", "pulse.yaml"], { files });
+    expect(at(document, "readings.0.spikes")).toEqual([
+      { time: { value: 0, unit: "min" }, area: { value: expect.closeTo((50 * 0.1) / 10, 10), unit: "g/L min" } },
+    ]);
+  });
+
   test("a place that the network lacks is an error of the trial", async () => {
     const { status, document } = await json(["simulate", "tank.yaml", "--trial", "other.yaml"], {
       files: { ...files, "other.yaml": files["pulse.yaml"].replace("at: product", "at: produkt") },
