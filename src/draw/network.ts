@@ -2,9 +2,11 @@ import { circle, group, line, path, rectangle } from "../svg/marks.js";
 import { type Point, samples, spinePath } from "../svg/spine.js";
 import { type Box, px, type Svg } from "../svg/svg.js";
 import type { Arcs } from "./blocks.js";
+import { union } from "./boxes.js";
 import { type Caption, caption, drawCaption, extent } from "./caption.js";
-import { type Layout, layOut, type Ribbon, union } from "./layout.js";
+import { type Layout, layOut } from "./layout.js";
 import { type PictureOptions, picture } from "./picture.js";
+import type { Ribbon } from "./placing.js";
 import { amount, roundAmount, typeset } from "./scale.js";
 import type { FlowSheet } from "./sheet.js";
 
@@ -57,8 +59,9 @@ function inDrawingOrder(ribbons: readonly Ribbon[]): readonly Ribbon[] {
   return [...ribbons].sort((a, b) => rank(a) - rank(b));
 }
 
-function drawRibbon({ trip, spine, back, via }: Ribbon): Svg {
-  const d = spinePath(spine);
+function drawRibbon(ribbon: Ribbon): Svg {
+  const { trip, spine, back, via } = ribbon;
+  const d = tuckedPath(ribbon);
   const accent = trip.stream.accent ? " accent" : "";
   const halo = path(d, "halo", { "stroke-width": trip.width + 3 });
   if (trip.role === "exchange") {
@@ -78,6 +81,14 @@ function drawRibbon({ trip, spine, back, via }: Ribbon): Svg {
   const rim = back ? path(d, `ribbon${accent}`, { "stroke-width": trip.width }) : "";
   const width = back ? Math.max(0, trip.width - 2) : trip.width;
   return [halo, rim, width > 0 ? path(d, kind, { "stroke-width": width }) : "", ...heads].join("");
+}
+
+/** The ribbon's way, drawn on under the bodies at both ends. */
+function tuckedPath({ spine, via, tuck }: Ribbon): string {
+  const { start, pieces } = spine;
+  const end = pieces[pieces.length - 1].to;
+  const last = { x: end.x + (via === "side" ? -tuck.to : tuck.to), y: end.y };
+  return spinePath({ start: { x: start.x - tuck.from, y: start.y }, pieces: [{ to: start }, ...pieces, { to: last }] });
 }
 
 /** Chevrons along the level piece of a lane. */
