@@ -26,7 +26,7 @@ export function runAlone(args: readonly string[], script: URL): Promise<ExitStat
   };
   const listenNoMore = onInterrupt(interrupted);
   return new Promise((done) => {
-    let status: ExitStatus = 3;
+    let status: ExitStatus | Promise<ExitStatus> = 3;
     worker.on("message", (m: Message) => {
       if ("out" in m) streams.out(m.out);
       else if ("err" in m) streams.err(m.err);

@@ -4,6 +4,7 @@ import { parseNetwork } from "../parse/network.js";
 import { escapeText } from "../svg/svg.js";
 import type { Context } from "./context.js";
 import { type Outcome, UsageError } from "./outcome.js";
+import { plantAt } from "./plant.js";
 import { settingsFrom } from "./settings.js";
 
 export interface DrawOptions {
@@ -17,7 +18,7 @@ export function draw(file: string, { output, set }: DrawOptions, { inputs, io }:
   if (ending === "png") throw new UsageError("'.png' is not in this version of backmix; draw to .svg or .html");
   if (ending !== "svg" && ending !== "html") throw new UsageError(`-o '${output}': draw to .svg or .html`);
   const network = inputs.document(file, parseNetwork);
-  const svg = drawNetwork(flowSheet(inputs.plant(network, settingsFrom(network, set))));
+  const svg = drawNetwork(flowSheet(plantAt(network, settingsFrom(network, set))));
   const content = ending === "html" ? page(network.title, svg) : `${svg}\n`;
   if (output === undefined) return { status: 0, text: content, json: { ok: true, svg } };
   io.write(output, content);

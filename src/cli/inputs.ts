@@ -1,7 +1,3 @@
-import { createHash } from "node:crypto";
-import { compile } from "../compile/compile.js";
-import type { Plant, Settings } from "../compile/plant.js";
-import type { Network } from "../model/network.js";
 import type { Parsed, ParseOptions, Read } from "../parse/parsed.js";
 import type { Problem } from "../problems/problem.js";
 import { hasErrors } from "../problems/report.js";
@@ -48,16 +44,6 @@ export class Inputs {
     return document;
   }
 
-  /**
-   * A plant at the given values.
-   * @throws InputError where they make a volume or flow impossible
-   */
-  plant(network: Network, settings: Settings): Plant {
-    const { plant, problems } = compile(network, settings);
-    if (!plant) throw new InputError(problems);
-    return plant;
-  }
-
   /** Keeps warnings, throws on errors. */
   accept(problems: readonly Problem[]): void {
     if (hasErrors(problems)) throw new InputError(problems);
@@ -65,7 +51,8 @@ export class Inputs {
   }
 
   /** Every file that was read, with its SHA-256, in the order read. */
-  list(): { path: string; sha256: string }[] {
+  async list(): Promise<{ path: string; sha256: string }[]> {
+    const { createHash } = await import("node:crypto");
     return [...this.contents].flatMap(([path, content]) =>
       content === undefined ? [] : [{ path, sha256: createHash("sha256").update(content).digest("hex") }],
     );

@@ -1,20 +1,24 @@
 #!/usr/bin/env node
 import { isMainThread } from "node:worker_threads";
-import { runAlone } from "./alone.js";
 import { endWithReader, files, streams, terminal } from "./io.js";
-import { run } from "./run.js";
-import { runInWorker } from "./worker.js";
+import { version } from "./version.js";
 
 /** Commands that may run long: they work in a thread of their own, so that this one hears an interrupt. */
 const long = new Set(["fit", "study"]);
 
-if (!isMainThread) await runInWorker();
-else {
+// Each way loads what it needs and no more: starting is most of the time of a short command.
+if (!isMainThread) {
+  const { runInWorker } = await import("./worker.js");
+  await runInWorker();
+} else {
   endWithReader();
   const args = process.argv.slice(2);
-  const isHelp = args.some((a) => a === "--help" || a === "-h");
-  process.exitCode =
-    long.has(args[0] ?? "") && !isHelp
-      ? await runAlone(args, new URL(import.meta.url))
-      : await run(args, { ...files(process.cwd()), ...terminal(), ...streams, cancelled: () => false });
+  if (args.length === 1 && args[0] === "--version") streams.out(`${version}\n`);
+  else if (long.has(args[0] ?? "") && !args.some((a) => a === "--help" || a === "-h")) {
+    const { runAlone } = await import("./alone.js");
+    process.exitCode = await runAlone(args, new URL(import.meta.url));
+  } else {
+    const { run } = await import("./run.js");
+    process.exitCode = await run(args, { ...files(process.cwd()), ...terminal(), ...streams, cancelled: () => false });
+  }
 }

@@ -9,12 +9,18 @@ import { commandNames, program } from "./program.js";
 import { version } from "./version.js";
 
 /** Says that the program itself is at fault, in the form that the command line asks for. */
-export function tellFault(e: unknown, args: readonly string[], io: Io): ExitStatus {
+export function tellFault(e: unknown, args: readonly string[], io: Io): Promise<ExitStatus> {
   return tell(fault(e), commandIn(args) ?? "backmix", args, new Inputs(io), io);
 }
 
-function tell(outcome: Outcome, command: string, args: readonly string[], inputs: Inputs, io: Io): ExitStatus {
-  if (asksForJson(args)) io.out(`${JSON.stringify(document(command, inputs, outcome))}\n`);
+async function tell(
+  outcome: Outcome,
+  command: string,
+  args: readonly string[],
+  inputs: Inputs,
+  io: Io,
+): Promise<ExitStatus> {
+  if (asksForJson(args)) io.out(`${JSON.stringify(await document(command, inputs, outcome))}\n`);
   else printForPeople(outcome, inputs.warnings, io);
   return outcome.status;
 }
@@ -27,7 +33,7 @@ function tell(outcome: Outcome, command: string, args: readonly string[], inputs
 export async function run(args: readonly string[], io: Io): Promise<ExitStatus> {
   const inputs = new Inputs(io);
   let command = commandIn(args) ?? "backmix";
-  const finish = (outcome: Outcome): ExitStatus => tell(outcome, command, args, inputs, io);
+  const finish = (outcome: Outcome): Promise<ExitStatus> => tell(outcome, command, args, inputs, io);
   let said = "";
   const hear = (text: string): void => {
     said += text;
@@ -39,7 +45,7 @@ export async function run(args: readonly string[], io: Io): Promise<ExitStatus> 
       outcome = await work();
     };
     await program({ io, inputs, perform, write: hear, width: 100 }).parseAsync([...args], { from: "user" });
-    return finish(outcome);
+    return await finish(outcome);
   } catch (e) {
     return finish(outcomeOf(e, said, args));
   }
@@ -56,12 +62,12 @@ const asksForJson = (args: readonly string[]): boolean => {
   );
 };
 
-function document(command: string, inputs: Inputs, { json, problems }: Outcome): object {
+async function document(command: string, inputs: Inputs, { json, problems }: Outcome): Promise<object> {
   const found = [...inputs.warnings, ...(problems ?? [])].map(problemJson);
   return {
     backmix: version,
     command,
-    inputs: inputs.list(),
+    inputs: await inputs.list(),
     ...json,
     ...("problems" in json ? {} : { problems: found }),
   };

@@ -7,6 +7,7 @@ import { predict } from "../reaction/prediction.js";
 import type { Context } from "./context.js";
 import { steadyJson } from "./json/steady.js";
 import type { Outcome } from "./outcome.js";
+import { plantAt } from "./plant.js";
 import { settingsFrom } from "./settings.js";
 import type { SimulateOptions } from "./simulate.js";
 import { steadyText } from "./text/steady.js";
@@ -17,7 +18,7 @@ export function simulateDuty(network: Network, options: SimulateOptions, { input
   const { report, problems } = collector();
   checkDuty(network, duty, report);
   inputs.accept(problems);
-  const plant = inputs.plant(network, { ...networkSettings(duty), ...settingsFrom(network, options.set) });
+  const plant = plantAt(network, { ...networkSettings(duty), ...settingsFrom(network, options.set) });
   const prediction = predict(plant, duty);
   const { state: steady } = prediction;
   const { worst } = steady;

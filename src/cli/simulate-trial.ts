@@ -17,6 +17,7 @@ import { engineNamed, engines, largestDifference } from "./engines.js";
 import { pure, quantity, series } from "./json/quantity.js";
 import { balanceJson, momentsJson } from "./json/tracer.js";
 import { type Outcome, UsageError } from "./outcome.js";
+import { plantAt } from "./plant.js";
 import { settingsFrom } from "./settings.js";
 import type { SimulateOptions } from "./simulate.js";
 import { blocks, table } from "./text/table.js";
@@ -32,7 +33,7 @@ export function simulateTrial(network: Network, options: SimulateOptions, { inpu
   const { report, problems } = collector();
   checkTrial(network, trial, report);
   inputs.accept(problems);
-  const plant = inputs.plant(network, settingsOfDay(network, trial, settingsFrom(network, options.set)));
+  const plant = plantAt(network, settingsOfDay(network, trial, settingsFrom(network, options.set)));
   const origin = Math.min(...trial.injections.map((i) => i.start));
   const clock = clockFrom(options, network.units.time, () => lastTime(plant, trial, origin));
   const wanted = trial.readings.map(() => ({ time: clock.si.map((t) => t + origin) }));

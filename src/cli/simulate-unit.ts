@@ -8,6 +8,7 @@ import { engineNamed, engines, largestDifference } from "./engines.js";
 import { pure } from "./json/quantity.js";
 import { tracerJson } from "./json/tracer.js";
 import type { Outcome } from "./outcome.js";
+import { plantAt } from "./plant.js";
 import { requirePlace, settingsFrom } from "./settings.js";
 import type { SimulateOptions } from "./simulate.js";
 import { blocks } from "./text/table.js";
@@ -16,10 +17,10 @@ import { clockFrom } from "./times.js";
 import { balanceUnit, perUnit, pureNumber } from "./units.js";
 
 /** `simulate --pulse` and `--step`: a unit of tracer. */
-export function simulateUnit(network: Network, options: SimulateOptions, { inputs, io }: Context): Outcome {
+export function simulateUnit(network: Network, options: SimulateOptions, { io }: Context): Outcome {
   const form = options.pulse === undefined ? "step" : "pulse";
   const into = options.pulse ?? options.step ?? "";
-  const plant = inputs.plant(network, settingsFrom(network, options.set));
+  const plant = plantAt(network, settingsFrom(network, options.set));
   requirePlace(into, plant.entry, `--${form}`);
   for (const name of options.at ?? []) requirePlace(name, plant.exit, "--at");
   const clock = clockFrom(options, network.units.time, () => settlingTime(plant, into));
