@@ -1,0 +1,87 @@
+import type { ChangedFigure, ChangeOutcome, StudyResult } from "../../study/result.js";
+import { chance, estimateLine } from "../digits.js";
+import { differenceEstimate, estimate, readingUnit } from "./estimate.js";
+import { traitsOf } from "./traits.js";
+
+/** The answer in about five lines: what is wrong, how sure, what it makes, what a change brings, what is still open. */
+export function answerOf(result: StudyResult): string[] {
+  const best = result.ranking[0];
+  if (!best?.fit || !best.plant) return ["No network could be fitted to these trials; see the findings."];
+  const { lines } = traitsOf(best.plant, best.fit);
+  const wrong =
+    lines.length > 0
+      ? `${capital(lines.join("; "))}.`
+      : "No bypass, dead water or quiet zone shows in the best network.";
+  return [wrong, sure(result), ...makes(result), ...bestChange(result), open(result)];
+}
+
+function sure(result: StudyResult): string {
+  const [best, ...others] = result.ranking;
+  const equals = others.filter((r) => r.survives);
+  const name = `'${best.rival.network.title}'`;
+  const caveat = best.fit?.converged ? "" : " Its fit did not converge: read it as a first look.";
+  if (equals.length > 0) {
+    const names = equals.map((r) => `'${r.rival.network.title}' (${chance(r.standing.weight)})`).join(", ");
+    return `This rests on ${name} (weight ${chance(best.standing.weight)}), but the data do not rule out ${names}.${caveat}`;
+  }
+  if (others.length === 0)
+    return `This rests on ${name}, the only network tried: others may explain the data as well.${caveat}`;
+  const next = others.find((r) => r.fit);
+  const behind = next
+    ? `; the next, '${next.rival.network.title}', is ${Math.round(next.standing.difference)} AICc units behind`
+    : "";
+  return `Of ${result.ranking.length} networks tried, ${name} explains the tests far best${behind}. Networks that were not tried may do as well.${caveat}`;
+}
+
+function makes(result: StudyResult): string[] {
+  const best = result.ranking[0];
+  const first = result.predictions.filter((p) => p.rival === best.rival);
+  const duties = [...new Set(first.map((p) => p.duty))];
+  return duties.flatMap((duty) => {
+    const p = first.find((x) => x.duty === duty);
+    if (!p) return [];
+    const unit = readingUnit(duty, p.name, p.unit);
+    const now = `${duty.title}: ${p.name} ${estimateLine(estimate(p.value, p.interval95, unit))}`;
+    if (!p.bounds || p.bounds.apply === "no") return [`${now}.`];
+    const low = estimateLine(estimate(Math.min(p.bounds.segregated, p.bounds.maximumMixedness), undefined, unit));
+    const high = estimateLine(estimate(Math.max(p.bounds.segregated, p.bounds.maximumMixedness), undefined, unit));
+    return [`${now}; late or early mixing of the same flow pattern would give ${plain(low)} to ${plain(high)}.`];
+  });
+}
+
+/** Without the note that a bare number has no interval. */
+const plain = (words: string): string => words.replace(/ \(not estimable\)/, "");
+
+function bestChange(result: StudyResult): string[] {
+  const best = result.ranking[0];
+  const told = result.changes
+    .filter((c) => c.rival === best.rival && c.figures.length > 0)
+    .map((c): { c: ChangeOutcome; f: ChangedFigure } => ({ c, f: c.figures[0] }))
+    .sort((a, b) => gain(b.f) - gain(a.f));
+  if (told.length === 0) return [];
+  const { c, f } = told[0];
+  const unit = readingUnit(f.duty, f.name, f.unit);
+  const now = plain(estimateLine(estimate(f.before, undefined, unit)));
+  const then = estimateLine(estimate(f.value, f.interval95, unit));
+  const by = estimateLine(differenceEstimate(f.value - f.before, f.difference95, unit));
+  const sure = f.probabilityBetter === undefined ? "" : `; better in ${chance(f.probabilityBetter)} of the draws`;
+  return [`${c.change.title}: ${f.name} from ${now} to ${then}, a change of ${by}${sure}.`];
+}
+
+const gain = (f: ChangedFigure): number =>
+  f.probabilityBetter === undefined ? 0 : (f.probabilityBetter - 0.5) * Math.abs(f.value - f.before);
+
+function open(result: StudyResult): string {
+  const best = result.ranking[0];
+  const equals = result.ranking.filter((r) => r.survives).length;
+  if (equals > 1) {
+    return "Still open: which of the equal networks is right. A test at another flow or stirrer speed, or a probe inside the vessel, would tell.";
+  }
+  const loose = best.fit?.findings.filter((f) => f.code === "cannot-tell" || f.code === "parameter-at-bound") ?? [];
+  if (loose.length > 0) return `Still open: ${loose[0].message}. ${loose[0].fix}.`;
+  const trials = result.readings.length;
+  if (trials < 2) return "Still open: one test says nothing of the next day. Repeat it, best at another flow.";
+  return "Still open: whether the vessel is the same on another day. Repeat one test before money is spent, and again after the change.";
+}
+
+const capital = (words: string): string => words.charAt(0).toUpperCase() + words.slice(1);

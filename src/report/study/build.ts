@@ -1,0 +1,153 @@
+import type { Ranked, StudyResult } from "../../study/result.js";
+import { dimensions } from "../../units/dimension.js";
+import { inUnit } from "../../units/unit.js";
+import type { CautionTriggers, Change, Prediction, Provenance, ReportParameter, Rival, StudyReport } from "../input.js";
+import { answerOf } from "./answer.js";
+import { dataQuality, findingsOf } from "./data.js";
+import { estimate, parameterEstimate, readingUnit } from "./estimate.js";
+import { curveFigures, type NamedFigure, vesselFigure } from "./figures.js";
+import { testedFlows } from "./tested.js";
+import { traitsOf } from "./traits.js";
+
+/** The report of a study, and its drawings under the names that they are saved by. */
+export function reportOf(
+  result: StudyResult,
+  provenance: Omit<Provenance, "seed">,
+): { report: StudyReport; figures: readonly NamedFigure[] } {
+  const best = result.ranking[0];
+  const vessel = best && vesselFigure(best, result.study.trials);
+  const curves = curveFigures(result);
+  const { findings, notSupported } = findingsOf(result);
+  const tested = testedFlows(result.study);
+  const report: StudyReport = {
+    title: result.study.title,
+    answer: answerOf(result),
+    ...(vessel ? { vessel } : {}),
+    curves,
+    data: dataQuality(result),
+    findings,
+    notSupported,
+    rivals: result.ranking.map((r, i) => rivalRow(r, i, result)),
+    equals: equalsOf(result),
+    parameters: best?.fit ? parametersOf(best) : [],
+    correlations: best?.fit ? correlationsOf(best) : [],
+    predictions: result.predictions.filter((p) => p.rival === best?.rival).map(predictionRow),
+    changes: changeRows(result),
+    assumptions: assumptionsOf(result),
+    cautions: cautionsOf(result, tested.extrapolated),
+    tested: tested.lines,
+    provenance: { ...provenance, seed: result.study.seed },
+  };
+  return { report, figures: [...(vessel ? [vessel] : []), ...curves] };
+}
+
+function rivalRow(r: Ranked, place: number, result: StudyResult): Rival {
+  const lead = result.ranking[0];
+  const verdict = !r.fit
+    ? `could not be fitted: ${r.problems[0]?.message ?? "no fit was found"}`
+    : place === 0
+      ? "explains the tests best"
+      : r.survives
+        ? "fits about as well: not ruled out"
+        : `leaves ${ratioWords(r, lead)} as much unexplained as the best`;
+  return {
+    network: r.rival.network.title,
+    freeParameters: r.fit?.freeParameters ?? 0,
+    aicc: r.fit?.aicc ?? Number.NaN,
+    weight: r.standing.weight,
+    verdict: r.fit && !r.fit.converged ? `${verdict}; its fit did not converge` : verdict,
+  };
+}
+
+function ratioWords(r: Ranked, lead: Ranked): string {
+  const ratio = (r.fit?.residualSumOfSquares ?? 0) / (lead.fit?.residualSumOfSquares ?? 1);
+  return ratio >= 10
+    ? `${Number(ratio.toPrecision(2)).toLocaleString("en").replace(/,/g, " ")} times`
+    : `${ratio.toPrecision(3)} times`;
+}
+
+function equalsOf(result: StudyResult): string[] {
+  const [best, ...others] = result.ranking.filter((r) => r.survives);
+  return others.map(
+    (r) => `'${best.rival.network.title}' and '${r.rival.network.title}' cannot be told apart by these tests`,
+  );
+}
+
+function parametersOf(best: Ranked): ReportParameter[] {
+  return (best.fit?.parameters ?? []).map((p): ReportParameter => {
+    const about = best.rival.network.names.find((n) => n.name === p.name)?.about;
+    return { name: p.name, estimate: parameterEstimate(p), atBound: p.atBound, ...(about ? { about } : {}) };
+  });
+}
+
+function correlationsOf(best: Ranked): StudyReport["correlations"] {
+  const { names, rows } = best.fit?.correlation ?? { names: [], rows: [] };
+  const pairs = names.flatMap((one, i) =>
+    names.slice(i + 1).map((other, j) => ({ one, other, value: rows[i][i + 1 + j] })),
+  );
+  return pairs.filter((p) => Number.isFinite(p.value)).sort((a, b) => Math.abs(b.value) - Math.abs(a.value));
+}
+
+function predictionRow(p: StudyResult["predictions"][number]): Prediction {
+  const unit = readingUnit(p.duty, p.name, p.unit);
+  const b = p.bounds;
+  return {
+    duty: p.duty.title,
+    name: p.name,
+    estimate: estimate(p.value, p.interval95, unit),
+    ...(b && b.apply !== "no"
+      ? { bounds: { segregated: inUnit(b.segregated, unit), maximumMixedness: inUnit(b.maximumMixedness, unit) } }
+      : {}),
+    ...(b?.says ? { boundsSay: b.says } : {}),
+  };
+}
+
+function changeRows(result: StudyResult): Change[] {
+  return result.changes.flatMap((c) => {
+    const several = result.ranking.filter((r) => r.survives).length > 1;
+    const on = several ? ` (by '${c.rival.network.title}')` : "";
+    return c.figures.map((f): Change => {
+      const unit = readingUnit(f.duty, f.name, f.unit);
+      return {
+        name: `${c.change.title}${on}`,
+        quantity: `${f.name}, ${f.duty.title}`,
+        estimate: estimate(f.value, f.interval95, unit),
+        today: inUnit(f.before, unit),
+        probabilityBetter: f.probabilityBetter ?? Number.NaN,
+      };
+    });
+  });
+}
+
+function assumptionsOf(result: StudyResult): string[] {
+  const skipped = result.changes.flatMap((c) =>
+    c.skipped ? [`${c.change.title} was left out for '${c.rival.network.title}': ${c.skipped}`] : [],
+  );
+  const lost = result.ranking.filter((r) => !r.survives).length;
+  return [
+    "Flow and volume were steady during each test, and the tracer followed the liquid.",
+    "Intervals carry what the fit leaves open and every ± that the files declare; constants of the vessel are drawn beside the fitted values, which errs on the wide side.",
+    `Predictions rest on ${result.draws} draws${lost > 0 ? "; only networks with a weight above 5 % were taken further" : ""}.`,
+    "A change keeps every fitted value but those that it sets itself.",
+    ...skipped,
+  ];
+}
+
+function cautionsOf(result: StudyResult, extrapolated: readonly string[]): CautionTriggers {
+  const best = result.ranking[0];
+  const traits = best?.plant && best.fit ? traitsOf(best.plant, best.fit) : undefined;
+  const reacting = result.study.duties.some((d) => (d.chemistry?.reactions.length ?? 0) > 0);
+  const kill = result.study.duties.some((d) => d.report.some((r) => r.what === "log-removal"));
+  const radio = result.study.trials.some((t) =>
+    t.injections.some(
+      (i) => i.form.is === "pulse" && i.form.amount.dimension.every((x, k) => x === dimensions.frequency[k]),
+    ),
+  );
+  return {
+    disinfection: kill,
+    drinkingWater: kill,
+    toxic: reacting && ((traits?.bypass ?? false) || (traits?.dead ?? false)),
+    radiotracer: radio,
+    extrapolated,
+  };
+}

@@ -1,0 +1,75 @@
+import type { Figure } from "../../data/figure.js";
+import type { ReadingMoments } from "../../data/moments.js";
+import type { StudyResult } from "../../study/result.js";
+import { inUnit } from "../../units/unit.js";
+import type { DataQuality, Estimate, ReportFinding } from "../input.js";
+
+/** Data quality per reading: grade, why, figures, what each cleaning step did. */
+export function dataQuality(result: StudyResult): DataQuality[] {
+  return result.readings.flatMap(({ trial, moments }) =>
+    moments.readings.map((r): DataQuality => {
+      const reasons = moments.findings.filter((f) => f.at === r.at).map((f) => `${f.message} (${f.evidence})`);
+      return {
+        trial: trial.title,
+        at: r.at,
+        grade: moments.grade,
+        because: reasons.length > 0 ? reasons : ["nothing in the log speaks against it"],
+        figures: figuresOf(r),
+        steps: r.steps.map((s) => ({
+          name: s.name,
+          area: inUnit(s.area, r.area.unit),
+          mean: inUnit(s.mean ?? Number.NaN, r.mean.unit),
+          variance: inUnit(s.variance ?? Number.NaN, r.variance.unit),
+          t10: inUnit(s.t10 ?? Number.NaN, r.t10.unit),
+        })),
+        stepUnits: { area: r.area.unit.name, time: r.timeUnit.name },
+      };
+    }),
+  );
+}
+
+function figuresOf(r: ReadingMoments): DataQuality["figures"] {
+  const named: [string, Figure | undefined][] = [
+    ["recovery", r.recovery],
+    ["mean", r.mean],
+    ["t10", r.t10],
+    ["t50", r.t50],
+    ["t90", r.t90],
+    ["mean over V/Q", r.indices["mean-over-tau"]],
+    ["tanks in series", r.indices.tanks],
+  ];
+  return named.flatMap(([name, f]) => (f ? [{ name, estimate: figureEstimate(f, name === "recovery") }] : []));
+}
+
+/** A figure with its standard error as an interval of twice that on either side. */
+function figureEstimate(f: Figure, percent: boolean): Estimate {
+  if (f.value === undefined) return { value: undefined, unit: f.unit.name };
+  const scale = percent ? 100 : 1;
+  const value = scale * inUnit(f.value, f.unit);
+  const unit = percent ? "%" : f.unit.name;
+  if (f.standardError === undefined) return { value, unit };
+  const half = (1.96 * f.standardError * scale) / f.unit.factor;
+  return { value, unit, low: value - half, high: value + half };
+}
+
+/** What the logs and the best fit tell, and what they do not. */
+export function findingsOf(result: StudyResult): { findings: ReportFinding[]; notSupported: string[] } {
+  const several = result.readings.length > 1;
+  const fromData = result.readings.flatMap(({ trial, moments }) =>
+    moments.findings.map((f): ReportFinding => {
+      const where = several ? `${trial.title}, ${f.at}: ` : `${f.at}: `;
+      return { message: `${where}${f.message}`, evidence: f.evidence, couldBe: f.couldBe, next: f.next };
+    }),
+  );
+  const best = result.ranking[0];
+  const fromFit = (best?.fit?.findings ?? []).map(
+    (f): ReportFinding => ({ message: f.message, evidence: evidenceWords(f.evidence), next: f.fix }),
+  );
+  const notSupported = [...new Set(result.readings.flatMap(({ moments }) => moments.notSupported))];
+  return { findings: [...fromFit, ...fromData], notSupported };
+}
+
+const evidenceWords = (evidence: Readonly<Record<string, number | string>>): string =>
+  Object.entries(evidence)
+    .map(([name, value]) => `${name} ${typeof value === "number" ? Number(value.toPrecision(3)) : value}`)
+    .join(", ");

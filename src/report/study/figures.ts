@@ -1,0 +1,140 @@
+import { drawCurves } from "../../draw/curves.js";
+import { drawFit } from "../../draw/fit-curve.js";
+import { flowSheet } from "../../draw/flow-sheet.js";
+import { drawNetwork } from "../../draw/network.js";
+import type { FittedReading } from "../../fit/result.js";
+import type { Trial } from "../../model/trial.js";
+import type { Ranked, StudyResult } from "../../study/result.js";
+import { differenceInUnit, inUnit, type Unit } from "../../units/unit.js";
+import { estimateLine } from "../digits.js";
+import type { Figure } from "../input.js";
+import { parameterEstimate } from "./estimate.js";
+import { traitsOf } from "./traits.js";
+
+/** A figure with the name of the file that it is saved under. */
+export interface NamedFigure extends Figure {
+  readonly name: string;
+}
+
+/** The vessel as fitted: what the reader should look at is marked, what the fit moved bears its interval. */
+export function vesselFigure(ranked: Ranked, trials: readonly Trial[]): NamedFigure | undefined {
+  const { plant, fit, rival } = ranked;
+  if (!plant || !fit) return undefined;
+  const notes = new Map(
+    plant.network.compartments.flatMap((c) => {
+      const e = c.values.volume?.expression;
+      const p = e?.type === "name" ? fit.parameters.find((x) => x.name === e.name) : undefined;
+      const words = p?.interval95 && /\((.*)\)/.exec(estimateLine(parameterEstimate(p)))?.[1];
+      return words ? [[c.name, words] as const] : [];
+    }),
+  );
+  const sheet = flowSheet(plant, {
+    injections: trials.flatMap((t) => t.injections.map((i) => i.at)),
+    probes: trials.flatMap((t) => t.readings.map((r) => r.at)),
+    notes,
+    accents: traitsOf(plant, fit).places,
+  });
+  return {
+    name: "vessel",
+    drawing: drawNetwork(sheet, { untitled: true }),
+    caption: `The vessel as fitted by '${rival.network.title}', at the flow of the file. Area is volume, width is flow; in brackets what the fit leaves possible (95 %).`,
+  };
+}
+
+/** Measured against fitted of the best rival, one figure a trial; then all rivals over the same points. */
+export function curveFigures(result: StudyResult): NamedFigure[] {
+  const best = result.ranking[0];
+  if (!best?.fit) return [];
+  const { fit } = best;
+  return result.study.trials.flatMap((trial, k) => {
+    const readings = fit.readings.filter((r) => r.trial === trial.title);
+    if (readings.length === 0) return [];
+    const { time } = best.rival.network.units;
+    const start = trial.injections[0]?.start ?? 0;
+    return [fitFigure(trial, readings, time, start, k), ...rivalFigure(result, trial, readings[0], time, start, k)];
+  });
+}
+
+function fitFigure(
+  trial: Trial,
+  readings: readonly FittedReading[],
+  time: Unit,
+  start: number,
+  k: number,
+): NamedFigure {
+  const unit = readings[0].unit;
+  const drawing = drawFit(
+    {
+      title: trial.title,
+      timeUnit: time.name,
+      value: `tracer, ${unit.name}`,
+      readings: readings.map((r) => {
+        const reading = trial.readings.find((x) => x.at === r.at);
+        return {
+          label: r.at,
+          time: r.time.map((t) => inUnit(t - start, time)),
+          measured: r.measured.map((c) => inUnit(c, unit)),
+          fitted: r.fitted.map((c) => inUnit(c, unit)),
+          residual: r.residual.map((c) => differenceInUnit(c, unit)),
+          leftOut: leftOutOf(trial, r.at, start, time),
+          ...(reading?.series ? { source: reading.series.file } : {}),
+        };
+      }),
+    },
+    { untitled: true },
+  );
+  return {
+    name: `fit-${k + 1}`,
+    drawing,
+    caption: `${trial.title}: measured points, the curve fitted to all trials at once, and what is left between them. Time counts from the injection.`,
+  };
+}
+
+function leftOutOf(trial: Trial, at: string, start: number, time: Unit) {
+  const reading = trial.readings.find((r) => r.at === at);
+  const { series } = reading ?? {};
+  if (!reading || !series) return [];
+  return reading.leaveOut.flatMap((span) =>
+    Array.from(series.time)
+      .filter((t) => t >= span.from && t <= span.to)
+      .map((t) => ({ time: inUnit(t - start, time), because: span.because })),
+  );
+}
+
+/** Every rival's curve over the points of a trial, on a logarithmic axis: the tail tells them apart. */
+function rivalFigure(
+  result: StudyResult,
+  trial: Trial,
+  measured: FittedReading,
+  time: Unit,
+  start: number,
+  k: number,
+): NamedFigure[] {
+  const fitted = result.ranking.flatMap((r) => {
+    const own = r.fit?.readings.find((x) => x.trial === trial.title && x.at === measured.at);
+    return own ? [{ r, own }] : [];
+  });
+  if (fitted.length < 2) return [];
+  const x = measured.time.map((t) => inUnit(t - start, time));
+  const shown = (values: Float64Array) => values.map((c) => inUnit(c, measured.unit));
+  const drawing = drawCurves(
+    {
+      title: `${trial.title}: rivals`,
+      x: `time, ${time.name}`,
+      y: `tracer, ${measured.unit.name}`,
+      points: { x, y: shown(measured.measured) },
+      lines: fitted.map(({ r, own }, i) => ({ label: shortName(r), x, y: shown(own.fitted), accent: i === 0 })),
+    },
+    { log: true, untitled: true },
+  );
+  return [
+    {
+      name: `rivals-${k + 1}`,
+      drawing,
+      caption: `${trial.title}: every network fitted to the same points, on a logarithmic axis.`,
+    },
+  ];
+}
+
+/** The name of a rival's file, without folder and ending: short enough for the end of a line. */
+export const shortName = (r: Ranked): string => (r.rival.path.split("/").at(-1) ?? "").replace(/\.ya?ml$/, "");
