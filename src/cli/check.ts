@@ -1,16 +1,18 @@
 import { compile } from "../compile/compile.js";
 import type { Plant } from "../compile/plant.js";
 import { parseAny } from "../parse/any.js";
+import { githubAnnotations } from "../problems/formats/github.js";
+import { sarifLog } from "../problems/formats/sarif.js";
 import { problemJson } from "../problems/json.js";
 import { printProblems } from "../problems/print.js";
 import type { Problem } from "../problems/problem.js";
 import { hasErrors } from "../problems/report.js";
 import type { Context } from "./context.js";
 import { networkJson } from "./json/network.js";
-import { type Outcome, UsageError } from "./outcome.js";
-import { annotation } from "./text/annotation.js";
+import type { Outcome } from "./outcome.js";
 import { networkText } from "./text/network.js";
 import { blocks } from "./text/table.js";
+import { version } from "./version.js";
 
 export interface CheckOptions {
   readonly format: "text" | "json" | "github" | "sarif";
@@ -26,7 +28,6 @@ interface Checked {
 
 /** `check FILE…`: every problem of every file; of a sound network its balance. */
 export function check(files: readonly string[], { format }: CheckOptions, { inputs, io }: Context): Outcome {
-  if (format === "sarif") throw new UsageError("'--format sarif' is not in this version of backmix");
   const checked = files.map((file): Checked => {
     const text = inputs.text(file);
     if (typeof text !== "string") return { file, kind: undefined, problems: [text], plant: undefined };
@@ -37,10 +38,7 @@ export function check(files: readonly string[], { format }: CheckOptions, { inpu
   const ok = !hasErrors(problems);
   return {
     status: ok ? 0 : 1,
-    text:
-      format === "github"
-        ? problems.map(annotation).join("\n")
-        : checked.map((c) => say(c, io.colour.out)).join("\n\n"),
+    text: textOf(checked, problems, format, io.colour.out),
     json: {
       ok,
       files: checked.map((c) => ({
@@ -53,6 +51,17 @@ export function check(files: readonly string[], { format }: CheckOptions, { inpu
       problems: problems.map(problemJson),
     },
   };
+}
+
+function textOf(
+  checked: readonly Checked[],
+  problems: readonly Problem[],
+  format: CheckOptions["format"],
+  colour: boolean,
+): string {
+  if (format === "github") return githubAnnotations(problems);
+  if (format === "sarif") return JSON.stringify(sarifLog(problems, version), null, 2);
+  return checked.map((c) => say(c, colour)).join("\n\n");
 }
 
 function say({ file, kind, problems, plant }: Checked, colour: boolean): string {

@@ -71,6 +71,14 @@ describe("check", () => {
     );
   });
 
+  test("--format sarif prints a log for code scanning", async () => {
+    const { status, out } = await backmix(["check", "broken.yaml", "--format", "sarif"], { files });
+    expect(status).toBe(1);
+    const log = JSON.parse(out);
+    expect(at(log, "version")).toBe("2.1.0");
+    expect(at(log, "runs.0.results.0.ruleId")).toBe("share-sum");
+  });
+
   test("--format json is --json", async () => {
     const { out } = await backmix(["check", "tank.yaml", "--format", "json"], { files });
     expect(at(JSON.parse(out), "files.0.ok")).toBe(true);

@@ -1,8 +1,10 @@
-import { problemJson } from "../../problems/json.js";
-import type { Problem } from "../../problems/problem.js";
+import { problemJson } from "../json.js";
+import type { Problem } from "../problem.js";
 
-/** A problem as a workflow command of GitHub Actions, which shows it beside the line of a pull request. */
-export function annotation(problem: Problem): string {
+/** Problems as workflow commands of GitHub Actions, one a line, which shows each beside its line of a pull request. */
+export const githubAnnotations = (problems: readonly Problem[]): string => problems.map(annotation).join("\n");
+
+function annotation(problem: Problem): string {
   const { severity, file, line, column, endLine, endColumn, code, message, fix } = problemJson(problem);
   const where = [`file=${property(file)}`, `line=${line}`, `endLine=${endLine}`];
   const columns = line === endLine ? [`col=${column}`, `endColumn=${endColumn}`] : [];
