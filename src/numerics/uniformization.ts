@@ -1,13 +1,23 @@
 import { multiply, type SparseRows, sparseRows } from "./sparse.js";
 
-/** Carries a state through x' = A x exactly, and its time integral with it. */
+/**
+ * Carries a state through x' = A x exactly. One step from x is a series of vectors P^k x; every time d inside the step is
+ * read from it with Poisson weights, its time integral with Poisson tails.
+ */
 export interface Propagator {
-  /** Largest rate, 1/s: a step longer than `longest` is to be split. */
+  /** L, the largest rate, 1/s. */
+  readonly rate: number;
+  /** A step may be this long, s. */
   readonly longest: number;
-  /** Prepares a step from x of length up to h <= longest: afterwards `at` reads anywhere in it. */
+  /** Prepares a step from x of length up to h <= longest. */
   begin(x: Float64Array, h: number): void;
-  /** weights . x(d) and weights . integral of x from 0 to d, for 0 <= d <= h; no allocation. */
-  at(d: number, states: Int32Array, weights: Float64Array): { value: number; integral: number };
+  /** The numbers weights . P^k x of the step begun, k = 0, 1, ... */
+  series(states: Int32Array, weights: Float64Array): Float64Array;
+  /** Fills `weight` (and `tail` where asked) for time d; returns how many terms count. */
+  weigh(d: number, tails: boolean): number;
+  readonly weight: Float64Array;
+  /** P(N > k); divide by `rate` for the integral from 0 to d. */
+  readonly tail: Float64Array;
   /** x <- x(d), z <- z + integral of x from 0 to d, in place. */
   finish(d: number, x: Float64Array, z: Float64Array): void;
 }
@@ -17,58 +27,51 @@ export interface Propagator {
  * where the products cost, short where the system is small.
  */
 const thetaFor = (size: number): number => (size > 64 ? 32 : 12);
-const mostTerms = 128;
 
 /**
  * Exact stepping of x' = A x for a matrix whose off-diagonal entries are not negative (flows between volumes):
  * exp(A h) = sum of Poisson(k; L h) P^k with P = I + A/L, L the largest rate, all terms >= 0, so nothing cancels.
- * The vectors P^k x of one step serve every time in it; the integral takes the weights P(N > k)/L. Error near round-off.
+ * Error near round-off; nothing is allocated in a step but by `series`.
  * @see A. Jensen, Skand. Aktuarietidskr. 36 (1953) 87-91; W. K. Grassmann, Comput. Oper. Res. 4 (1977) 47-53
  */
 export function uniformization(a: SparseRows): Propagator {
   const n = a.size;
   // Without any rate the state grows by its sources alone; any rate will do then, as the series ends by itself.
   const rate = largestRate(a) || 1;
+  const theta = thetaFor(n);
   const jump = jumpMatrix(a, rate);
-  const powers = Array.from({ length: termsFor(thetaFor(n)) }, () => new Float64Array(n));
-  const weight = new Float64Array(mostTerms);
-  const tail = new Float64Array(mostTerms);
-  const read = { value: 0, integral: 0 };
+  const powers = Array.from({ length: termsFor(theta) }, () => new Float64Array(n));
+  const weight = new Float64Array(powers.length);
+  const tail = new Float64Array(powers.length);
   let ready = 0;
-  let weighed = Number.NaN;
-  let terms = 0;
 
-  function weigh(d: number): void {
-    if (d === weighed) return;
-    weighed = d;
-    terms = poisson(rate * d, weight, tail, ready);
-  }
-
+  const weigh = (d: number, tails: boolean): number => {
+    const terms = Math.min(ready, termsFor(rate * d));
+    poissonWeights(rate * d, weight, terms);
+    if (tails) poissonTails(rate * d, weight, tail, terms);
+    return terms;
+  };
   return {
-    longest: thetaFor(n) / rate,
+    rate,
+    longest: theta / rate,
+    weight,
+    tail,
+    weigh,
     begin(x, h) {
-      ready = termsFor(rate * h);
-      weighed = Number.NaN;
+      ready = Math.min(powers.length, termsFor(rate * h));
       powers[0].set(x);
       for (let k = 1; k < ready; k++) multiply(jump, powers[k - 1], powers[k]);
     },
-    at(d, states, weights) {
-      weigh(d);
-      let value = 0;
-      let integral = 0;
-      for (let k = 0; k < terms; k++) {
+    series(states, weights) {
+      const s = new Float64Array(ready);
+      for (let k = 0; k < ready; k++) {
         const v = powers[k];
-        let sum = 0;
-        for (let j = 0; j < states.length; j++) sum += weights[j] * v[states[j]];
-        value += weight[k] * sum;
-        integral += tail[k] * sum;
+        for (let j = 0; j < states.length; j++) s[k] += weights[j] * v[states[j]];
       }
-      read.value = value;
-      read.integral = integral / rate;
-      return read;
+      return s;
     },
     finish(d, x, z) {
-      weigh(d);
+      const terms = weigh(d, true);
       x.fill(0);
       for (let k = 0; k < terms; k++) {
         const v = powers[k];
@@ -106,21 +109,22 @@ export function largestRate(a: SparseRows): number {
 }
 
 /** Terms until both weight and tail of a Poisson number are under round-off. */
-const termsFor = (theta: number): number => Math.min(mostTerms, Math.ceil(theta + 9 * Math.sqrt(theta) + 12));
+const termsFor = (theta: number): number => Math.ceil(theta + 9 * Math.sqrt(theta) + 12);
 
-/** Weights P(N = k) and tails P(N > k) for a mean theta <= 32; returns how many matter (at most `limit`). */
-function poisson(theta: number, weight: Float64Array, tail: Float64Array, limit: number): number {
-  const terms = Math.min(limit, termsFor(theta));
+function poissonWeights(theta: number, weight: Float64Array, terms: number): void {
   let w = Math.exp(-theta);
   for (let k = 0; k < terms; k++) {
     weight[k] = w;
     w *= theta / (k + 1);
   }
-  // Summed from the far end, so that small tails keep their digits.
-  let sum = w / (1 - Math.min(0.5, theta / (terms + 1)));
+}
+
+/** P(N > k), summed from the far end, so that small tails keep their digits. */
+function poissonTails(theta: number, weight: Float64Array, tail: Float64Array, terms: number): void {
+  const next = (weight[terms - 1] * theta) / terms;
+  let sum = next / (1 - Math.min(0.5, theta / (terms + 1)));
   for (let k = terms - 1; k >= 0; k--) {
     tail[k] = sum;
     sum += weight[k];
   }
-  return terms;
 }

@@ -1,11 +1,16 @@
 import { type SparseRows, sparseRows } from "../numerics/sparse.js";
-import { type DenseStep, denseStep } from "../numerics/squaring.js";
-import { uniformization } from "../numerics/uniformization.js";
+import { largestRate } from "../numerics/uniformization.js";
+import { lagsAsStates, rowMaps } from "./lags.js";
 import { type Answer, type Drive, driveAt, type LinearSystem, type Query, type TracerEngine } from "./linear-system.js";
+import { seriesStepper } from "./series-stepper.js";
+import { squaringStepper } from "./squaring-stepper.js";
+import type { Stepper } from "./stepper.js";
 
 /** Work (rates times span times entries) above which a small system is stepped by squaring instead. */
 const muchWork = 3e8;
 const fewStates = 120;
+/** A detector this much faster than the vessel is filtered in closed form; a slower one is one more state. */
+const muchFaster = 2.5;
 
 /**
  * Exact stepping by the matrix exponential, to round-off. The drive rides along as two more states, its level and its
@@ -13,156 +18,110 @@ const fewStates = 120;
  */
 export const exact: TracerEngine = {
   name: "exact",
-  run(system, drive, queries) {
+  run(asked, drive, wanted) {
+    const end = lastTime(wanted);
+    const own = largestRate(asked.rates);
+    const stiff = own * end * asked.rates.value.length > muchWork && asked.input.length <= fewStates;
+    const { system, queries } = lagsAsStates(asked, wanted, (lag) => stiff || 1 / lag < muchFaster * own);
     const n = system.input.length;
     const matrix = drive.times.length > 0 ? augmented(system) : system.rates;
     const x = new Float64Array(matrix.size);
     const z = new Float64Array(matrix.size);
     for (let i = 0; i < n; i++) x[i] = system.input[i] * drive.amount;
-    const answers = queries.map((q): Answer => {
-      return { value: new Float64Array(q.times.length), integral: new Float64Array(q.times.length) };
-    });
-    const events = eventsOf(queries);
-    const end = events.order.length > 0 ? events.time[events.order[events.order.length - 1]] : 0;
-    const stepper = stepperFor(matrix, end);
-    let next = 0;
+    const stepper = stiff ? squaringStepper(matrix) : seriesStepper(matrix);
+    const readers = queries.map((q) => new Reader(q, drive));
     let u = 0;
     for (let piece = 0; piece <= drive.times.length; piece++) {
-      const stop = Math.min(drive.times[piece] ?? end, end);
-      const last = piece === drive.times.length;
-      while (u < stop || (last && next < events.order.length)) {
+      const last = piece === drive.times.length || drive.times[piece] > end;
+      const stop = last ? end : drive.times[piece];
+      // Events at a break point wait for the piece that begins there: values at a jump are limits from the right.
+      while (u < stop || (last && u === stop)) {
         const h = Math.min(stop - u, stepper.longest);
+        const final = u + h >= stop || h === stop - u;
         stepper.begin(x, h);
-        // Events at a break point wait for the piece that begins there: values at a jump are limits from the right.
-        for (; next < events.order.length; next++) {
-          const e = events.order[next];
-          const d = events.time[e] - u;
-          if (d > h || (d === stop - u && !last)) break;
-          const q = events.query[e];
-          answerAt(queries[q], stepper, d, z, drive, events.time[e], answers[q], events.place[e]);
-        }
+        for (const r of readers) r.read(stepper, u, h, z, last && final);
         stepper.finish(h, x, z);
-        u = h < stop - u ? u + h : stop;
+        u = final ? stop : u + h;
+        if (last && final) break;
       }
-      if (last || drive.times[piece] > end) continue;
+      if (last) break;
       x[n] = drive.level[piece];
       x[n + 1] = drive.slope[piece];
+      for (const r of readers) r.driven(drive.level[piece], drive.slope[piece]);
     }
-    return { answers, stopped: undefined };
+    return { answers: readers.map((r) => r.answer), stopped: undefined };
   },
 };
 
-/** What stepping needs of a propagator; `at` reads inside the step begun. */
-interface Stepper {
-  readonly longest: number;
-  begin(x: Float64Array, h: number): void;
-  at(d: number, states: Int32Array, weights: Float64Array): { value: number; integral: number };
-  finish(d: number, x: Float64Array, z: Float64Array): void;
-}
+/** Reads one query off the steps as they come. Its lag, where it has one, is carried in closed form. */
+class Reader {
+  readonly answer: Answer;
+  private next = 0;
+  /** The detector's state at the beginning of the step, and the undispersed rate it sees: level, slope. */
+  private seen: number;
+  private level = 0;
+  private slope = 0;
 
-function stepperFor(matrix: SparseRows, end: number): Stepper {
-  const series = uniformization(matrix);
-  const work = (end / series.longest) * 90 * (matrix.value.length + matrix.size);
-  return work > muchWork && matrix.size <= fewStates ? squared(matrix) : series;
-}
-
-/** A stepper that jumps by dense matrices, one per step length, kept for reuse. */
-function squared(matrix: SparseRows): Stepper {
-  const n = matrix.size;
-  const steps = new Map<string, DenseStep>();
-  const from = new Float64Array(n);
-  const stepOf = (d: number): DenseStep => {
-    const key = d.toPrecision(12);
-    const known = steps.get(key) ?? denseStep(matrix, d);
-    steps.set(key, known);
-    return known;
-  };
-  const row = (m: Float64Array, i: number): number => {
-    let sum = 0;
-    for (let j = 0; j < n; j++) sum += m[i * n + j] * from[j];
-    return sum;
-  };
-  return {
-    longest: Number.POSITIVE_INFINITY,
-    begin: (x) => from.set(x),
-    at(d, states, weights) {
-      const { exponential, integral } = stepOf(d);
-      const read = { value: 0, integral: 0 };
-      states.forEach((s, j) => {
-        read.value += weights[j] * row(exponential, s);
-        read.integral += weights[j] * row(integral, s);
-      });
-      return read;
-    },
-    finish(d, x, z) {
-      const { exponential, integral } = stepOf(d);
-      for (let i = 0; i < n; i++) {
-        x[i] = row(exponential, i);
-        z[i] += row(integral, i);
-      }
-    },
-  };
-}
-
-/** All times asked, not negative, with their query and place in it, and the order in which they come. */
-function eventsOf(queries: readonly Query[]) {
-  const count = queries.reduce((sum, q) => sum + q.times.length, 0);
-  const time = new Float64Array(count);
-  const query = new Int32Array(count);
-  const place = new Int32Array(count);
-  let used = 0;
-  queries.forEach((q, i) => {
-    for (let k = 0; k < q.times.length; k++) {
-      if (q.times[k] < 0) continue;
-      time[used] = q.times[k];
-      query[used] = i;
-      place[used++] = k;
-    }
-  });
-  const order = Uint32Array.from({ length: used }, (_, i) => i).sort((a, b) => time[a] - time[b]);
-  return { time, query, place, order };
-}
-
-/** Writes a query's value and integral at local time u, `d` into the step begun; z holds integrals up to that step. */
-function answerAt(
-  query: Query,
-  stepper: Stepper,
-  d: number,
-  z: Float64Array,
-  drive: Drive,
-  u: number,
-  answer: Answer,
-  at: number,
-): void {
-  const { states, weights } = query.signal;
-  let value = 0;
-  let integral = 0;
-  if (states.length > 0) {
-    const read = stepper.at(d, states, weights);
-    value = read.value;
-    integral = read.integral;
-    for (let j = 0; j < states.length; j++) integral += weights[j] * z[states[j]];
+  constructor(
+    private readonly query: Query,
+    private readonly drive: Drive,
+  ) {
+    const { times, signal } = query;
+    this.answer = { value: new Float64Array(times.length), integral: new Float64Array(times.length) };
+    while (this.next < times.length && times[this.next] < 0) this.next++;
+    this.seen = signal.lag ? (signal.direct * drive.amount) / signal.lag : 0;
   }
-  const direct = directAt(query, drive, u);
-  answer.value[at] = value + direct.value;
-  answer.integral[at] = integral + direct.integral;
+
+  /** A new piece of the drive begins. */
+  driven(level: number, slope: number): void {
+    this.level = this.query.signal.direct * level;
+    this.slope = this.query.signal.direct * slope;
+  }
+
+  /** Answers the times in [u, u + h), and at u + h where the step is the last. */
+  read(stepper: Stepper, u: number, h: number, z: Float64Array, closed: boolean): void {
+    const { times, signal, integral } = this.query;
+    const due = (i: number) => i < times.length && (closed ? times[i] <= u + h : times[i] < u + h);
+    if (!due(this.next) && !signal.lag) return;
+    const { states, weights, lag } = signal;
+    const look = stepper.look(states, weights);
+    let before = 0;
+    for (let j = 0; j < states.length; j++) before += weights[j] * z[states[j]];
+    for (; due(this.next); this.next++) {
+      const d = Math.max(0, times[this.next] - u);
+      const value = lag ? this.lagged(look.lagged(d, 1 / lag), d, lag) : look.value(d);
+      this.answer.value[this.next] = value;
+      if (integral) this.answer.integral[this.next] = before + look.integral(d) - (lag ? lag * value : 0);
+      if (signal.direct !== 0) this.addDirect(this.next, times[this.next]);
+    }
+    if (lag) this.seen = this.lagged(look.lagged(h, 1 / lag), h, lag);
+    if (lag) this.level += this.slope * h;
+  }
+
+  /** The detector's state a time d into the step: what it held fades, what the states and the undispersed rate bring comes in. */
+  private lagged(brought: number, d: number, lag: number): number {
+    const fade = Math.exp(-d / lag);
+    const filled = -Math.expm1(-d / lag);
+    return this.seen * fade + brought + this.level * filled + this.slope * (d - lag * filled);
+  }
+
+  private addDirect(i: number, u: number): void {
+    const { signal } = this.query;
+    const { rate, total } = driveAt(this.drive, u);
+    if (!signal.lag) this.answer.value[i] += signal.direct * rate;
+    this.answer.integral[i] += signal.direct * total;
+  }
 }
 
-/** The undispersed part of a query at local time u. */
-export function directAt({ signal }: Query, drive: Drive, u: number): { value: number; integral: number } {
-  if (signal.direct === 0) return { value: 0, integral: 0 };
-  const { rate, total } = driveAt(drive, u);
-  return { value: signal.direct * rate, integral: signal.direct * total };
-}
+const lastTime = (queries: readonly Query[]): number =>
+  queries.reduce((m, { times }) => Math.max(m, times[times.length - 1] ?? 0), 0);
 
 /** Adds two states: the rate of tracer put in, and its slope. */
 function augmented({ rates, input }: LinearSystem): SparseRows {
   const n = input.length;
-  const rows = Array.from({ length: n }, (_, i) => {
-    const row = new Map<number, number>();
-    for (let k = rates.start[i]; k < rates.start[i + 1]; k++) row.set(rates.column[k], rates.value[k]);
+  const rows = rowMaps(rates);
+  rows.forEach((row, i) => {
     if (input[i] !== 0) row.set(n, input[i]);
-    return row;
   });
   return sparseRows([...rows, new Map([[n + 1, 1]]), new Map()]);
 }

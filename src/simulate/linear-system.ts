@@ -16,6 +16,8 @@ export interface Signal {
   readonly states: Int32Array;
   readonly weights: Float64Array;
   readonly direct: number;
+  /** s: seen through a first-order detector that held nothing before. */
+  readonly lag?: number;
 }
 
 /** A signal that is seen `delay` seconds late: at clock time t it shows its value at u = t - delay. */
@@ -38,6 +40,8 @@ export interface Drive {
 export interface Query {
   readonly signal: Signal;
   readonly times: Float64Array;
+  /** Is the integral wanted too? It costs about as much again. */
+  readonly integral: boolean;
 }
 
 /** Values and time integrals of each query; the undispersed part of an instant amount is in the integral only. */

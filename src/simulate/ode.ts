@@ -1,6 +1,6 @@
 import { integrate } from "../numerics/integrate.js";
 import { multiply } from "../numerics/sparse.js";
-import { directAt } from "./exact.js";
+import { lagsAsStates } from "./lags.js";
 import { type Answer, driveAt, type TracerEngine } from "./linear-system.js";
 
 /** Relative tolerance of a step, and the absolute one beside the largest state that the drive can make. */
@@ -13,7 +13,8 @@ const absolute = 1e-13;
  */
 export const ode: TracerEngine = {
   name: "ode",
-  run(system, drive, queries) {
+  run(asked, drive, wanted) {
+    const { system, queries } = lagsAsStates(asked, wanted, () => true);
     const n = system.input.length;
     const times = Float64Array.from(
       new Set(queries.flatMap((q) => (q.signal.states.length > 0 ? [...q.times].filter((t) => t >= 0) : []))),
@@ -47,11 +48,11 @@ export const ode: TracerEngine = {
         if (u < 0) return;
         const { states, weights } = q.signal;
         const state = solved.states[at.get(u) ?? -1];
-        const direct = directAt(q, drive, u);
+        const { rate, total } = driveAt(drive, u);
         const sum = (offset: number) => states.reduce((m, k, w) => m + weights[w] * state[offset + k], 0);
         const known = state !== undefined || states.length === 0;
-        answer.value[i] = known ? direct.value + sum(0) : Number.NaN;
-        answer.integral[i] = known ? direct.integral + sum(n) : Number.NaN;
+        answer.value[i] = known ? q.signal.direct * rate + sum(0) : Number.NaN;
+        answer.integral[i] = known ? q.signal.direct * total + sum(n) : Number.NaN;
       });
       return answer;
     });

@@ -13,6 +13,8 @@ export interface Seen {
 export interface Look {
   readonly passages: readonly Passage[];
   readonly times: Float64Array;
+  /** Default true; false leaves `integral` at 0. */
+  readonly integral?: boolean;
 }
 
 /** Runs an engine once for several looks. */
@@ -24,7 +26,8 @@ export function see(
 ): { seen: Seen[]; stopped: string | undefined } {
   const queries: Query[] = [];
   for (const look of looks) {
-    for (const p of look.passages) queries.push({ signal: p, times: look.times.map((t) => t - p.delay) });
+    for (const p of look.passages)
+      queries.push({ signal: p, times: look.times.map((t) => t - p.delay), integral: look.integral ?? true });
   }
   const { answers, stopped } = engine.run(unrolled.system(), drive, queries);
   let q = 0;

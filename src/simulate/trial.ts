@@ -32,11 +32,10 @@ export function trialResponse(
       if (node === undefined) throw new RangeError(`no place '${reading.at}' in the network`);
       const delay = reading.line.delay?.of(plant.env) ?? 0;
       const lag = reading.line.lag?.of(plant.env) ?? 0;
-      const passages: readonly Passage[] =
-        lag > 0 ? unrolled.lagged(unrolled.outflow(node), lag) : unrolled.outflow(node);
+      const passages: readonly Passage[] = unrolled.outflow(node).map((p) => (lag > 0 ? { ...p, lag } : p));
       // A vessel that starts in balance with `from` reads this before anything changes.
       if (before !== 0) sums[i].fill((before * steady[node].share) / plant.nodes[node].inflow);
-      return { passages, times: wanted[i].time.map((t) => t - injection.start - delay) };
+      return { passages, times: wanted[i].time.map((t) => t - injection.start - delay), integral: false };
     });
     const { seen } = see(unrolled, drive, looks, engine);
     seen.forEach((s, i) => {

@@ -15,8 +15,6 @@ export interface Unrolled {
   outflow(node: number): Passage[];
   /** Concentration entering a tube. */
   inlet(node: number): Passage[];
-  /** The same seen through a first-order detector of the given lag, s: adds states, so call before `system`. */
-  lagged(passages: readonly Passage[], lag: number): Passage[];
   system(): LinearSystem;
   /** True where passes were given up because there were too many. */
   readonly truncated: boolean;
@@ -50,7 +48,6 @@ export function unroll(plant: Plant, node: number, horizon: number): Unrolled {
     truncated,
     outflow: (i) => builder.copies.flatMap((c) => passage(c.delay, c.outflow.get(i) ?? c.seeds.get(i))),
     inlet: (i) => builder.copies.flatMap((c) => passage(c.delay, c.inlets.get(i))),
-    lagged: (passages, lag) => passages.map((p) => builder.lag(p, lag)),
     system: () => ({ rates: sparseRows(builder.rows), input: Float64Array.from(builder.input) }),
   };
 }
@@ -101,19 +98,6 @@ class Unroller {
       if (this.rows.length > mostStates || this.copies.length > 10_000) return waiting.length > 0;
     }
     return false;
-  }
-
-  /** A first-order detector behind one passage: y' = (c - y) / lag. */
-  lag(p: Passage, lag: number): Passage {
-    if (!(lag > 0)) return p;
-    const state = this.rows.length;
-    const row = new Map<number, number>([[state, -1 / lag]]);
-    p.states.forEach((s, i) => {
-      row.set(s, (row.get(s) ?? 0) + p.weights[i] / lag);
-    });
-    this.rows.push(row);
-    this.input.push(p.direct / lag);
-    return { delay: p.delay, states: Int32Array.of(state), weights: Float64Array.of(1), direct: 0 };
   }
 
   private copy(delay: number, seeds: Map<number, Draft>, first: boolean): Copy {
