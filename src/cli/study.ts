@@ -1,12 +1,18 @@
 import { parseStudy } from "../parse/study.js";
 import { beside } from "../read/paths.js";
+import type { StudyReport } from "../report/input.js";
+import { writeSummary } from "../report/markdown.js";
+import { writeReport } from "../report/report.js";
+import type { NamedFigure } from "../report/study/figures.js";
+import { reportOf } from "../report/study/build.js";
 import { runStudy } from "../study/run.js";
 import type { Context } from "./context.js";
-import type { ExitStatus } from "./io.js";
+import type { ExitStatus, Io } from "./io.js";
 import { studyJson } from "./json/study.js";
 import type { Outcome } from "./outcome.js";
 import { progressOn } from "./progress.js";
 import { studyText } from "./text/study.js";
+import { version } from "./version.js";
 
 export interface StudyOptions {
   readonly output?: string;
@@ -14,16 +20,51 @@ export interface StudyOptions {
 }
 
 /** `study FILE`: every rival fitted, every duty predicted, every change compared, one report. */
-export function study(file: string, { output, starts }: StudyOptions, { inputs, io }: Context): Outcome {
+export async function study(file: string, options: StudyOptions, { inputs, io }: Context): Promise<Outcome> {
   const document = inputs.document(file, parseStudy);
   const progress = progressOn(io);
   const result = runStudy(document, {
     cancelled: io.cancelled,
     progress: ({ stage, what, done }) => progress.say(`study: ${Math.round(100 * done)} %, ${stage} ${what}`),
-    ...(starts === undefined ? {} : { starts }),
+    ...(options.starts === undefined ? {} : { starts: options.starts }),
   });
   progress.done();
   const status: ExitStatus = result.stopped ? 130 : result.converged ? 0 : 3;
-  const folder = output ?? (document.out === undefined ? undefined : beside(file, document.out));
-  return { status, text: studyText(result), json: { ok: status === 0, ...studyJson(result), folder: folder ?? null } };
+  const { report, figures } = reportOf(result, {
+    files: await inputs.list(),
+    version,
+    command: commandLine(file, options),
+  });
+  const folder = options.output ?? (document.out === undefined ? undefined : beside(file, document.out));
+  // Half a study must not take the place of a whole report.
+  const path = folder === undefined || result.stopped ? undefined : save(folder, report, figures, io);
+  return {
+    status,
+    text: studyText(result, report.answer, path),
+    json: { ok: status === 0, ...studyJson(result), answer: report.answer, report: path ?? null },
+    notes: notesOf(status, folder, path),
+  };
+}
+
+/** Writes the drawings, the summary and, last, the page that shows them all; gives its path. */
+function save(folder: string, report: StudyReport, figures: readonly NamedFigure[], io: Io): string {
+  for (const { name, drawing } of figures) io.write(beside(`${folder}/`, `figures/${name}.svg`), `${drawing}\n`);
+  io.write(beside(`${folder}/`, "summary.md"), writeSummary(report));
+  const page = beside(`${folder}/`, "report.html");
+  io.write(page, writeReport(report));
+  return page;
+}
+
+const commandLine = (file: string, { output, starts }: StudyOptions): string =>
+  [
+    "backmix study",
+    file,
+    ...(output === undefined ? [] : ["-o", output]),
+    ...(starts === undefined ? [] : ["--starts", starts]),
+  ].join(" ");
+
+function notesOf(status: ExitStatus, folder: string | undefined, path: string | undefined): string[] {
+  if (status === 130) return ["backmix: interrupted; what was finished is printed, no report is written"];
+  const noFolder = folder === undefined ? ["backmix: no report is written; name a folder with -o or `out:`"] : [];
+  return status === 3 && path !== undefined ? ["backmix: a fit did not converge; the report says which"] : noFolder;
 }
