@@ -50,11 +50,20 @@ export function parseWrittenUnit(text: string): Unit | Fault {
   return isUnitFault(unit) ? unitFault(unit, text, 0) : unit;
 }
 
+/** Numbers, names and signs in one value: more would make trees too deep to walk. */
+const longest = 2000;
+
 const comparisons = ["<", "<=", ">", ">="] as const;
 
 function whole<T extends object>(text: string, read: (reader: Reader) => T | Fault): T | Fault {
   const tokens = scan(text);
   if (isFault(tokens)) return tokens;
+  if (tokens.length > longest)
+    return broken(
+      { from: 0, to: tokens[0].to },
+      `this value is made of more than ${longest} numbers, names and signs`,
+      "give parts of it a name under `constants`",
+    );
   const reader = new Reader(tokens);
   const result = read(reader);
   if (isFault(result)) return result;

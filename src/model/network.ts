@@ -11,7 +11,7 @@ export interface Network {
   readonly notes: string | undefined;
   /** Constants, parameters and `feed.flow`s: the names that values may use. One slot each in an Env. */
   readonly names: readonly Named[];
-  /** Indices into `names` in an order in which each depends on earlier ones only. */
+  /** Slots in an order in which each depends on earlier ones only. */
   readonly order: readonly number[];
   readonly feeds: readonly Feed[];
   readonly compartments: readonly Compartment[];

@@ -10,7 +10,11 @@ export function reportSyntax(source: Source, errors: readonly YAMLParseError[], 
   const lines = new Set<number>();
   const said = new Set<number>();
   for (const error of [...errors].sort((a, b) => a.pos[0] - b.pos[0])) {
-    const at: Span = { source, from: error.pos[0], to: Math.max(error.pos[1], error.pos[0] + 1) };
+    const at: Span = {
+      source,
+      from: error.pos[0],
+      to: Math.min(source.text.length, Math.max(error.pos[1], error.pos[0] + 1)),
+    };
     const { line } = placeOf(at);
     if (lines.has(line)) continue;
     lines.add(line);
@@ -48,8 +52,11 @@ function reportUnclosed(
 const lineEndOf = ({ source, from }: Span): number => from + restOfLine(source.text, from).length;
 
 function toLineEnd(at: Span): Span {
-  const rest = restOfLine(at.source.text, at.from).trimEnd();
-  return { ...at, to: at.from + Math.max(1, rest.length) };
+  const { text } = at.source;
+  // What is missed at the very end is missing after the last thing that is there.
+  const from = text.slice(at.from).trim() === "" ? Math.max(0, text.slice(0, at.from).trimEnd().length - 1) : at.from;
+  const rest = restOfLine(text, from).trimEnd();
+  return { ...at, from, to: from + Math.max(1, rest.length) };
 }
 
 /** The same, or the first line after it that holds more than a comment. */

@@ -7,6 +7,7 @@ import type { Report } from "../problems/report.js";
 import { collector } from "../problems/report.js";
 import { child, type Entry, entriesOf, type Tree } from "../read/tree.js";
 import { type Dimension, dimensions } from "../units/dimension.js";
+import { dependencyOrder } from "./dependency-order.js";
 import { checkName } from "./names.js";
 import { resolveValue, type Scope, writtenValue } from "./value.js";
 
@@ -46,30 +47,18 @@ export function resolveConstants(
   };
   const values: (Value | undefined)[] = entries.map(() => undefined);
   const order: number[] = [];
-  const state = new Uint8Array(entries.length); // 0 new, 1 being resolved, 2 done
-  const path: string[] = [];
-  const visit = (i: number): void => {
-    const { key, value } = entries[i];
-    if (state[i] === 1) {
-      report("circular-names", key.at, { circle: [...path.slice(path.indexOf(key.text)), key.text] });
-      return;
-    }
-    if (state[i] === 2) return;
-    state[i] = 1;
-    path.push(key.text);
-    for (const name of needs(value)) {
-      const other = index.get(name);
-      if (other !== undefined) visit(other);
-    }
-    path.pop();
-    state[i] = 2;
+  const needed = entries.map(({ value }) => needs(value).flatMap((name) => index.get(name) ?? []));
+  const { order: possible, circles } = dependencyOrder(needed);
+  for (const circle of circles) {
+    report("circular-names", entries[circle[0]].key.at, { circle: circle.map((i) => entries[i].key.text) });
+  }
+  for (const i of possible) {
     const resolved = resolveConstant(entries[i], scope, temperatureSlot, report);
-    if (!resolved) return;
+    if (!resolved) continue;
     values[i] = resolved;
-    found.set(key.text, resolved.dimension);
+    found.set(entries[i].key.text, resolved.dimension);
     order.push(i);
-  };
-  for (let i = 0; i < entries.length; i++) visit(i);
+  }
   const whole = order.length === written.length;
   const constants = entries.flatMap(({ key }, i) => {
     const value = values[i];

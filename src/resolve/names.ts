@@ -8,6 +8,7 @@ import type { Report } from "../problems/report.js";
 import { child, entriesOf, type MapNode, type ScalarNode, type Tree, textOf } from "../read/tree.js";
 import type { Span } from "../text/source.js";
 import { type Dimension, type DimensionName, dimensions } from "../units/dimension.js";
+import { dependencyOrder } from "./dependency-order.js";
 import { resolveValue, type Scope } from "./value.js";
 
 /** Reports a name that breaks the rules; true where it is fine. */
@@ -47,15 +48,26 @@ export function resolveNames(tree: MapNode, report: Report): ResolvedNames {
   };
   const names: Named[] = [];
   const order: number[] = [];
-  for (const slot of dependencyOrder(declared, slots, report)) {
-    const d = declared[slot];
-    const value = resolveValue(d.node, d.wanted, scope, report);
+  const needs = declared.map((d) => namesUsed(d.node).flatMap((n) => slots.get(n) ?? []));
+  const { order: possible, circles } = dependencyOrder(needs);
+  for (const circle of circles) {
+    const { node, at } = declared[circle[0]];
+    report("circular-names", node?.at ?? at, { circle: circle.map((i) => declared[i].name) });
+  }
+  const values = new Map<number, Value>();
+  for (const slot of possible) {
+    const value = resolveValue(declared[slot].node, declared[slot].wanted, scope, report);
     if (!value) continue;
-    found.set(d.name, value.dimension);
-    names[slot] = { name: d.name, slot, role: d.role, at: d.at, value, ...details(d, value, scope, report) };
+    values.set(slot, value);
+    found.set(declared[slot].name, value.dimension);
     order.push(slot);
   }
-  return { names: names.filter(Boolean), order, scope, slots };
+  // Bounds may use any name, so they come when all are known.
+  declared.forEach((d, slot) => {
+    const value = values.get(slot);
+    if (value) names.push({ name: d.name, slot, role: d.role, at: d.at, value, ...details(d, value, scope, report) });
+  });
+  return { names, order, scope, slots };
 }
 
 function declare(tree: MapNode, report: Report): Declared[] {
@@ -118,37 +130,6 @@ function details(
     if (low && high) between = [low, high];
   }
   return { between, spacing, about };
-}
-
-/** Slots in dependency order; circles are reported once each, printed, and left out. */
-function dependencyOrder(declared: readonly Declared[], slots: ReadonlyMap<string, number>, report: Report): number[] {
-  const needs = declared.map((d) => namesUsed(d.node).flatMap((n) => slots.get(n) ?? []));
-  const state = new Uint8Array(declared.length); // 0 new, 1 open, 2 done, 3 in a circle
-  const order: number[] = [];
-  const path: number[] = [];
-  const visit = (i: number): boolean => {
-    if (state[i] === 2) return true;
-    if (state[i] === 3) return false;
-    if (state[i] === 1) {
-      const circle = path.slice(path.indexOf(i));
-      for (const j of circle) state[j] = 3;
-      const first = Math.min(...circle);
-      const turned = [...circle.slice(circle.indexOf(first)), ...circle.slice(0, circle.indexOf(first))];
-      report("circular-names", declared[first].node?.at ?? declared[first].at, {
-        circle: [...turned, first].map((j) => declared[j].name),
-      });
-      return false;
-    }
-    state[i] = 1;
-    path.push(i);
-    const good = needs[i].map(visit).every(Boolean);
-    path.pop();
-    if (state[i] === 1) state[i] = 2;
-    if (good && state[i] === 2) order.push(i);
-    return good && state[i] === 2;
-  };
-  for (const i of declared.keys()) visit(i);
-  return order;
 }
 
 function namesUsed(node: Tree | undefined): readonly string[] {

@@ -68,7 +68,8 @@ function resolveCompartment(
   scope: Scope,
   report: Report,
 ): Compartment | undefined {
-  const kind = kinds[textOf(node, "kind") ?? ""];
+  const kindName = textOf(node, "kind") ?? "";
+  const kind = Object.hasOwn(kinds, kindName) ? kinds[kindName] : undefined;
   if (!kind) return undefined; // the shape check has said so
   const values: Record<string, Value> = {};
   const counts: Record<string, number> = {};
