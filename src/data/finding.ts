@@ -115,9 +115,10 @@ const wording = {
   },
   "mean-early": {
     weight: "note",
-    message: "the mean is shorter than volume over flow: part of the volume is not reached",
-    couldBe: "a volume or flow that is off, or a tail that was not seen",
-    next: "check volume and flow meter; measure longer",
+    message:
+      "read without a model, the mean is shorter than volume over flow: part of the volume is not reached, or renewed so slowly that its tail is taken for baseline",
+    couldBe: "a volume or flow that is off; a drift correction that takes a slow tail away",
+    next: "compare with the fitted networks, which keep tail and drift apart; check volume and flow meter; measure longer",
   },
   "mean-late": {
     weight: "caution",

@@ -19,10 +19,11 @@ export function atDecimals(x: number, decimals: number): string {
   return x < 0 && Number(words) !== 0 ? `\u2212${words}` : words;
 }
 
-/** "82.3 (80.1 to 84.2)" with the digits that the interval supports; three digits where there is no interval. */
+/** "82.3 (80.1 to 84.2)" with the digits that the interval supports; three digits where none is given or NaN says that there is none. */
 export function estimateWords({ value, low, high }: Estimate): { readonly value: string; readonly interval: string } {
   if (value === undefined || Number.isNaN(value)) return { value: "not estimable", interval: "" };
-  if (low === undefined || high === undefined || !Number.isFinite(high - low)) {
+  if (low === undefined || high === undefined) return { value: formatNumber(value, 3), interval: "" };
+  if (!Number.isFinite(high - low)) {
     return { value: formatNumber(value, 3), interval: "not estimable" };
   }
   const half = (high - low) / 2;

@@ -37,7 +37,7 @@ export interface Figure {
   readonly caption: string;
 }
 
-/** A number with its 95 % interval; `undefined` where the data cannot tell it. All in `unit`. */
+/** A number with its 95 % interval; left out where none was worked out, NaN where the data cannot tell it. All in `unit`. */
 export interface Estimate {
   readonly value: number | undefined;
   readonly unit: string;

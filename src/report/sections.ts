@@ -115,6 +115,7 @@ function parameters({ parameters, correlations }: StudyReport): Html {
 }
 
 function predictions({ predictions }: StudyReport): Html {
+  const driven = predictions.some((p) => p.drivenBy !== undefined);
   const rows = predictions.map((p) => {
     const { bounds, boundsSay } = p;
     const between = bounds
@@ -124,7 +125,7 @@ function predictions({ predictions }: StudyReport): Html {
       { words: p.duty, under: p.name },
       ...estimateRow("", p.estimate).slice(1),
       bounds && boundsSay ? { words: between, under: boundsSay } : between,
-      p.drivenBy ?? "",
+      ...(driven ? [p.drivenBy ?? ""] : []),
     ];
   });
   const columns = [
@@ -132,12 +133,14 @@ function predictions({ predictions }: StudyReport): Html {
     { head: "value", number: true },
     { head: "95 % interval", number: true },
     { head: "segregated to maximum mixedness" },
-    { head: "most of the spread from" },
+    ...(driven ? [{ head: "most of the spread from" }] : []),
   ];
   const drawn = grouped(predictions, (p) => `${p.name}, ${p.estimate.unit}`).map(([quantity, list]) =>
     figure({
       drawing: drawIntervals({ title: quantity, quantity, rows: list.flatMap(predictionRow) }, { untitled: true }),
-      caption: `${quantity}: value, 95 % interval, and where full segregation and maximum mixedness would put it.`,
+      caption: list.some((p) => p.bounds)
+        ? `${quantity}: value, 95 % interval, and where full segregation and maximum mixedness would put it.`
+        : `${quantity}: value and 95 % interval.`,
     }),
   );
   return section("predictions", "What it makes", [...drawn, table("Predictions", columns, rows)]);

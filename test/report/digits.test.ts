@@ -20,7 +20,8 @@ describe("a number carries as many digits as its interval supports", () => {
   });
 
   test("without an interval it says so, and gives no more than three digits", () => {
-    expect(line(1.23456)).toBe("1.23 L (not estimable)");
+    expect(line(1.23456)).toBe("1.23 L");
+    expect(line(1.23456, Number.NaN, Number.NaN)).toBe("1.23 L (not estimable)");
     expect(line(undefined)).toBe("not estimable");
     expect(line(Number.NaN)).toBe("not estimable");
     expect(line(2, 2, 2)).toBe("2 L");

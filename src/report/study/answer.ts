@@ -45,12 +45,9 @@ function makes(result: StudyResult): string[] {
     if (!p.bounds || p.bounds.apply === "no") return [`${now}.`];
     const low = estimateLine(estimate(Math.min(p.bounds.segregated, p.bounds.maximumMixedness), undefined, unit));
     const high = estimateLine(estimate(Math.max(p.bounds.segregated, p.bounds.maximumMixedness), undefined, unit));
-    return [`${now}; late or early mixing of the same flow pattern would give ${plain(low)} to ${plain(high)}.`];
+    return [`${now}; late or early mixing of the same flow pattern would give ${low} to ${high}.`];
   });
 }
-
-/** Without the note that a bare number has no interval. */
-const plain = (words: string): string => words.replace(/ \(not estimable\)/, "");
 
 function bestChange(result: StudyResult): string[] {
   const best = result.ranking[0];
@@ -61,11 +58,11 @@ function bestChange(result: StudyResult): string[] {
   if (told.length === 0) return [];
   const { c, f } = told[0];
   const unit = readingUnit(f.duty, f.name, f.unit);
-  const now = plain(estimateLine(estimate(f.before, undefined, unit)));
+  const now = estimateLine(estimate(f.before, undefined, unit));
   const then = estimateLine(estimate(f.value, f.interval95, unit));
   const by = estimateLine(differenceEstimate(f.value - f.before, f.difference95, unit));
   const sure = f.probabilityBetter === undefined ? "" : `; better in ${chance(f.probabilityBetter)} of the draws`;
-  return [`${c.change.title}: ${f.name} from ${now} to ${then}, a change of ${by}${sure}.`];
+  return [`${c.change.title}: ${f.name} from ${now} to ${then}, by ${by}${sure}.`];
 }
 
 const gain = (f: ChangedFigure): number =>

@@ -18,7 +18,7 @@ export function estimate(
   };
 }
 
-/** The same for a difference of two values. */
+/** The same for a difference of two values; one of percentages is in percentage points. */
 export function differenceEstimate(
   value: number,
   interval: readonly [number, number] | undefined,
@@ -27,12 +27,14 @@ export function differenceEstimate(
   const shown = (x: number) => differenceInUnit(x, unit);
   return {
     value: shown(value),
-    unit: unit.name,
+    unit: unit.name === "%" ? "percentage points" : unit.name,
     ...(interval ? { low: shown(interval[0]), high: shown(interval[1]) } : {}),
   };
 }
 
-export const parameterEstimate = (p: FittedParameter): Estimate => estimate(p.value, p.interval95, p.unit);
+/** A parameter without an interval is one that the data cannot tell. */
+export const parameterEstimate = (p: FittedParameter): Estimate =>
+  estimate(p.value, p.interval95 ?? [Number.NaN, Number.NaN], p.unit);
 
 const percent = ((): Unit => {
   const unit = parseUnit("%");

@@ -56,10 +56,7 @@ export function traitsOf(plant: Plant, fit: Fit): Traits {
       places.add(c.name);
       const flow = exchange.reduce((sum, s) => sum + s.flow, 0);
       const unit = plant.network.units.unitFor(dimensions.flow);
-      const time = estimateLine(estimate(held / flow, undefined, plant.network.units.time)).replace(
-        / \(not estimable\)/,
-        "",
-      );
+      const time = estimateLine(estimate(held / flow, undefined, plant.network.units.time));
       const flowKnown = exchangeInterval(plant, c.name, fit);
       lines.push(
         `${size()} is a quiet zone ('${c.name}') renewed by only ${estimateLine(estimate(flow, flowKnown, unit))}: its liquid changes once in ${time}`,
