@@ -1,6 +1,7 @@
 import { chemistryEntries } from "./catalogue/chemistry.js";
 import { dataEntries } from "./catalogue/data.js";
 import { flowEntries } from "./catalogue/flows.js";
+import { libraryEntries } from "./catalogue/library.js";
 import { nameEntries } from "./catalogue/names.js";
 import { runEntries } from "./catalogue/runs.js";
 import { shapeEntries } from "./catalogue/shape.js";
@@ -19,4 +20,5 @@ export const catalogue = {
   ...chemistryEntries,
   ...runEntries,
   ...studyEntries,
+  ...libraryEntries,
 } as const;

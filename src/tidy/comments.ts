@@ -1,0 +1,76 @@
+import { Parser } from "yaml";
+import type { CollectionPiece, EndComment, OwnComment, Part, Piece } from "./piece.js";
+import { columnOf, startsLine, startsLineAfterBlank } from "./source-lines.js";
+
+interface Comment {
+  readonly at: number;
+  readonly text: string;
+  readonly column: number;
+  /** It has a line to itself. */
+  readonly own: boolean;
+  readonly blank: boolean;
+}
+
+/**
+ * Gives each comment of a text to the part that it speaks of: one at the end of a line to what stands before it, one
+ * with a line to itself to what follows it at its depth.
+ */
+export function attachComments(text: string, root: CollectionPiece): void {
+  for (const comment of commentsIn(text)) attach(comment, root);
+}
+
+/** Comments in the order of the text. The lexer tells them from `#` in quotes and in block scalars. */
+function commentsIn(text: string): Comment[] {
+  const found: Comment[] = [];
+  const walk = (token: unknown): void => {
+    if (token === null || typeof token !== "object") return;
+    if (Array.isArray(token)) return token.forEach(walk);
+    const { type, offset, source, ...inside } = token as { type?: string; offset?: number; source?: string };
+    if (type === "comment" && offset !== undefined && source !== undefined) {
+      found.push({
+        at: offset,
+        text: source.trimEnd(),
+        column: columnOf(text, offset),
+        own: startsLine(text, offset),
+        blank: startsLineAfterBlank(text, offset),
+      });
+    } else Object.values(inside).forEach(walk);
+  };
+  for (const token of new Parser().parse(text)) walk(token);
+  return found.sort((a, b) => a.at - b.at);
+}
+
+function attach(comment: Comment, piece: CollectionPiece): void {
+  const last = piece.parts.findLastIndex((p) => p.from < comment.at);
+  if (last < 0) {
+    piece.parts[0].before.push(ownComment(comment));
+    return;
+  }
+  const part = piece.parts[last];
+  if (isFilled(part.value) && belongs(comment, part.value, piece)) attach(comment, part.value);
+  else if (!comment.own) part.ends.push(endComment(comment));
+  else (piece.parts[last + 1]?.before ?? piece.end).push(ownComment(comment));
+}
+
+/** Does the comment lie in the inner collection, rather than beside it in the outer one? */
+function belongs(comment: Comment, inner: CollectionPiece, outer: CollectionPiece): boolean {
+  if (inner.flow) return comment.at >= inner.from && comment.at < inner.to;
+  if (comment.at < inner.parts[0].from) return comment.own;
+  if (!comment.own || inner.parts.some((p) => p.from > comment.at)) return true;
+  // A list may stand at the column of its key: then the column decides for the next key.
+  return comment.column >= inner.column && comment.column > outer.column;
+}
+
+const isFilled = (piece: Piece): piece is CollectionPiece => piece.type !== "scalar" && piece.parts.length > 0;
+
+const ownComment = ({ text, blank }: Comment): OwnComment => ({ text, blank });
+const endComment = ({ text, column }: Comment): EndComment => ({ text, column });
+
+/** True where a comment lies anywhere inside. */
+export function hasComments(piece: Piece): boolean {
+  if (piece.type === "scalar") return false;
+  return piece.end.length > 0 || piece.parts.some(isCommented);
+}
+
+const isCommented = ({ before, ends, value }: Part): boolean =>
+  before.length > 0 || ends.length > 0 || hasComments(value);
