@@ -9,6 +9,7 @@ import { finiteValues } from "./finite.js";
 import { placeNames, streamTargets, unusedNames } from "./names.js";
 import type { Rule } from "./rule.js";
 import { splits } from "./splits.js";
+import { statedVolume } from "./stated-volume.js";
 import { checkSubjects } from "./statements.js";
 import { topologyOf } from "./topology.js";
 import { feedsAndOutlets, waysThrough } from "./ways.js";
@@ -26,6 +27,7 @@ const rules: readonly Rule[] = [
   sharesBesideRest,
   unusedNames,
   checkSubjects,
+  statedVolume,
 ];
 
 /** Runs every rule on a network whose names and values are all bound. */

@@ -7,6 +7,7 @@ import { collector, hasErrors } from "../problems/report.js";
 import { type MapNode, textOf } from "../read/tree.js";
 import { resolveNetwork } from "../resolve/network.js";
 import { cornerWarnings } from "./corners.js";
+import { fastExchanges } from "./fast-exchanges.js";
 import { type Meaning, type Parsed, type ParseOptions, parseDocument } from "./parsed.js";
 
 /** A network with the tree that it came from, which a study's changes are merged into. */
@@ -44,7 +45,11 @@ export function networkFromTree(
   const network = resolveNetwork(tree, path, report);
   if (hasErrors(problems)) return { network: undefined, problems };
   checkNetwork(network, evaluateNames(network), report);
-  if (!hasErrors(problems)) problems.push(...compile(network).problems);
+  if (!hasErrors(problems)) {
+    const compiled = compile(network);
+    problems.push(...compiled.problems);
+    if (compiled.plant) fastExchanges(compiled.plant, report);
+  }
   if (!hasErrors(problems)) cornerWarnings(network, report);
   return { network: hasErrors(problems) ? undefined : { ...network, tree }, problems };
 }

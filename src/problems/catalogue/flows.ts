@@ -126,4 +126,15 @@ export const flowEntries = {
     says: ({ name, parameter }) => `'${parameter}' may take all the flow of '${name}' and leave nothing for \`rest\``,
     fix: "set the upper bound of the share below 100 %",
   }),
+  "exchange-fast": entry<{ name: string; partner: string; flow: string; times: string }>({
+    severity: "warning",
+    says: ({ name, partner, flow, times }) =>
+      `'${name}' and '${partner}' exchange ${flow}, ${times} times what flows through them: they act as one tank`,
+    fix: "make them one tank with the volume of both, or lower the exchange",
+  }),
+  "volume-off": entry<{ sum: string; stated: string }>({
+    severity: "warning",
+    says: ({ sum, stated }) => `the volumes add to ${sum}, but the vessel is stated to hold ${stated}`,
+    fix: "make one volume the rest, such as `volume: total - riser`, or name what the flow never reaches as `kind: dead`",
+  }),
 } as const;
