@@ -9,7 +9,7 @@ import { steadyJson } from "./json/steady.js";
 import type { Outcome } from "./outcome.js";
 import { plantAt } from "./plant.js";
 import { settingsFrom } from "./settings.js";
-import type { SimulateOptions } from "./simulate.js";
+import type { SimulateOptions } from "./simulate-options.js";
 import { steadyText } from "./text/steady.js";
 
 /** `simulate --duty`: the steady state of one operating point. */

@@ -19,7 +19,7 @@ import { balanceJson, momentsJson } from "./json/tracer.js";
 import { type Outcome, UsageError } from "./outcome.js";
 import { plantAt } from "./plant.js";
 import { settingsFrom } from "./settings.js";
-import type { SimulateOptions } from "./simulate.js";
+import type { SimulateOptions } from "./simulate-options.js";
 import { blocks, table } from "./text/table.js";
 import { balanceLine, momentsTable } from "./text/tracer.js";
 import { type Clock, clockFrom } from "./times.js";

@@ -10,7 +10,7 @@ import { tracerJson } from "./json/tracer.js";
 import type { Outcome } from "./outcome.js";
 import { plantAt } from "./plant.js";
 import { requirePlace, settingsFrom } from "./settings.js";
-import type { SimulateOptions } from "./simulate.js";
+import type { SimulateOptions } from "./simulate-options.js";
 import { blocks } from "./text/table.js";
 import { balanceLine, momentsTable, spikesText } from "./text/tracer.js";
 import { clockFrom } from "./times.js";

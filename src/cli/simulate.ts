@@ -1,19 +1,7 @@
 import { parseNetwork } from "../parse/network.js";
 import type { Context } from "./context.js";
 import { type Outcome, UsageError } from "./outcome.js";
-import type { TimeOptions } from "./times.js";
-
-export interface SimulateOptions extends TimeOptions {
-  readonly pulse?: string;
-  readonly step?: string;
-  readonly trial?: string;
-  readonly duty?: string;
-  readonly at?: readonly string[];
-  readonly set?: readonly string[];
-  readonly engine: "auto" | "exact" | "ode" | "laplace";
-  readonly verify?: true;
-  readonly output?: string;
-}
+import type { SimulateOptions } from "./simulate-options.js";
 
 /** `simulate NETWORK`: tracer after a pulse, a step or as in a trial; or the steady state of a duty. */
 export async function simulate(file: string, options: SimulateOptions, context: Context): Promise<Outcome> {

@@ -1,9 +1,7 @@
 import { parseStudy } from "../parse/study.js";
 import { beside } from "../read/paths.js";
-import type { StudyReport } from "../report/input.js";
 import { writeSummary } from "../report/markdown.js";
 import { writeReport } from "../report/report.js";
-import type { NamedFigure } from "../report/study/figures.js";
 import { reportOf } from "../report/study/build.js";
 import { runStudy } from "../study/run.js";
 import type { Context } from "./context.js";
@@ -30,24 +28,26 @@ export async function study(file: string, options: StudyOptions, { inputs, io }:
   });
   progress.done();
   const status: ExitStatus = result.stopped ? 130 : result.converged ? 0 : 3;
-  const { report, figures } = reportOf(result, {
-    files: await inputs.list(),
-    version,
-    command: commandLine(file, options),
-  });
+  const files = await inputs.list();
+  const made = reportOf(result, { files, version, command: commandLine(file, options) });
+  const json = { ok: status === 0, ...studyJson(result), answer: made.report.answer };
   const folder = options.output ?? (document.out === undefined ? undefined : beside(file, document.out));
   // Half a study must not take the place of a whole report.
-  const path = folder === undefined || result.stopped ? undefined : save(folder, report, figures, io);
+  const path = folder === undefined || result.stopped ? undefined : save(folder, made, io);
+  if (folder !== undefined && path !== undefined) {
+    const whole = { backmix: version, command: "study", inputs: files, ...json, report: path };
+    io.write(beside(`${folder}/`, "result.json"), `${JSON.stringify(whole)}\n`);
+  }
   return {
     status,
-    text: studyText(result, report.answer, path),
-    json: { ok: status === 0, ...studyJson(result), answer: report.answer, report: path ?? null },
+    text: studyText(result, made.report.answer, path),
+    json: { ...json, report: path ?? null },
     notes: notesOf(status, folder, path),
   };
 }
 
 /** Writes the drawings, the summary and, last, the page that shows them all; gives its path. */
-function save(folder: string, report: StudyReport, figures: readonly NamedFigure[], io: Io): string {
+function save(folder: string, { report, figures }: ReturnType<typeof reportOf>, io: Io): string {
   for (const { name, drawing } of figures) io.write(beside(`${folder}/`, `figures/${name}.svg`), `${drawing}\n`);
   io.write(beside(`${folder}/`, "summary.md"), writeSummary(report));
   const page = beside(`${folder}/`, "report.html");

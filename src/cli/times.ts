@@ -17,6 +17,8 @@ export interface TimeOptions {
 }
 
 const defaultPoints = 400;
+/** More would not fit into one answer. */
+const mostPoints = 1_000_000;
 
 /**
  * The times of `--times` (sorted), or a grid from 0 to `--until` of `--points` points.
@@ -35,6 +37,7 @@ export function clockFrom(options: TimeOptions, unit: Unit, until: () => number)
   const last = end?.shown[0] ?? inUnit(until(), unit);
   if (!(last > 0)) throw new UsageError("--until must be later than 0");
   const points = options.points ?? defaultPoints;
+  if (points > mostPoints) throw new UsageError(`--points: ${mostPoints} is the most`);
   const shown = Array.from({ length: points }, (_, i) => (i === points - 1 ? last : (last * i) / (points - 1)));
   return { si: Float64Array.from(shown, (t) => fromUnit(t, unitOf)), shown, unit: unitOf };
 }

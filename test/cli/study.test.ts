@@ -65,8 +65,26 @@ describe("study", () => {
     expect(changes.find((c) => c.change === "Elsewhere")?.skipped).toContain("'riser'");
   });
 
+  test("writes the report, its summary and its drawings beside the study, or where it is told", async () => {
+    const { out, err, written } = await backmix(["study", "study.yaml"], { files });
+    expect(err).toBe("");
+    expect(out).toContain("report: made/report.html");
+    expect([...written.keys()]).toEqual(expect.arrayContaining(["made/report.html", "made/summary.md"]));
+    expect([...written.keys()].filter((f) => f.endsWith(".svg")).length).toBeGreaterThan(0);
+    expect(written.get("made/report.html")).toMatch(/^<!doctype html>[\s\S]*One tank or two\?[\s\S]*<\/html>\s*$/);
+    const saved = JSON.parse(written.get("made/result.json") ?? "");
+    const { document } = await json(["study", "study.yaml", "-o", "elsewhere"], { files });
+    expect(at(document, "report")).toBe("elsewhere/report.html");
+    expect({ ...saved, report: undefined, problems: undefined }).toEqual({
+      ...document,
+      report: undefined,
+      problems: undefined,
+    });
+  });
+
   test("an interrupt prints what was finished, marked, and ends with 130", async () => {
-    const { status, out } = await backmix(["study", "study.yaml"], { files, cancelled: () => true });
+    const { status, out, written } = await backmix(["study", "study.yaml"], { files, cancelled: () => true });
+    expect(written.size).toBe(0);
     expect(status).toBe(130);
     expect(out).toContain("interrupted: what was finished");
   });

@@ -2,16 +2,23 @@ import { chance, estimateLine } from "../../report/digits.js";
 import type { StudyResult } from "../../study/result.js";
 import { formatNumber } from "../../units/format.js";
 import { inUnit, type Unit } from "../../units/unit.js";
-import { blocks, type Column, table } from "./table.js";
+import { blocks, type Column, table, wrap } from "./table.js";
 
-/** What a study found, on one screen; the report has the rest. */
-export function studyText(result: StudyResult): string {
+/** What a study found, on one screen: the answer first; the report has the rest. */
+export function studyText(result: StudyResult, answer: readonly string[], report: string | undefined): string {
   const marked = result.stopped
     ? " (interrupted: what was finished)"
     : result.converged
       ? ""
       : " (a fit did not converge)";
-  return blocks(`${result.study.title}${marked}`, rankingTable(result), predictionsTable(result), changesTable(result));
+  return blocks(
+    `${result.study.title}${marked}`,
+    answer.map((line, i) => wrap(`  ${i + 1}. `, line)).join("\n"),
+    rankingTable(result),
+    predictionsTable(result),
+    changesTable(result),
+    report === undefined ? "" : `report: ${report}`,
+  );
 }
 
 const right = (title: string) => ({ title, align: "right" as const });

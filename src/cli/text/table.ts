@@ -30,5 +30,18 @@ export function pairs(rows: readonly (readonly [string, string])[], indent = 2):
 export const blocks = (...parts: readonly (string | undefined)[]): string =>
   parts.filter((p) => p !== undefined && p !== "").join("\n\n");
 
+/** Text broken between words to lines of at most `columns`, the later ones indented as deep as the first says. */
+export function wrap(first: string, text: string, columns = 100): string {
+  const lines: string[] = [];
+  let line = first;
+  for (const word of text.split(" ")) {
+    if (line.trim() !== "" && line !== first && width(line) + width(word) + 1 > columns) {
+      lines.push(line);
+      line = " ".repeat(width(first)) + word;
+    } else line += line === first ? word : ` ${word}`;
+  }
+  return [...lines, line].join("\n");
+}
+
 /** Columns of a terminal, near enough: characters, without those that combine. */
 const width = (text: string): number => [...text.replace(/\p{Mark}/gu, "")].length;

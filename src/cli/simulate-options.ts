@@ -1,0 +1,14 @@
+import type { TimeOptions } from "./times.js";
+
+/** The options of `simulate`, as written. */
+export interface SimulateOptions extends TimeOptions {
+  readonly pulse?: string;
+  readonly step?: string;
+  readonly trial?: string;
+  readonly duty?: string;
+  readonly at?: readonly string[];
+  readonly set?: readonly string[];
+  readonly engine: "auto" | "exact" | "ode" | "laplace";
+  readonly verify?: true;
+  readonly output?: string;
+}
