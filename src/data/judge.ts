@@ -103,7 +103,7 @@ export function judgeEnds(curve: CleanCurve, response: Response, moments: RawMom
 export function judgeRecovery(at: string, recovery: Figure): Finding[] {
   if (recovery.value === undefined) return [];
   const error = recovery.standardError;
-  const evidence = `recovery ${percent(recovery.value)}${error === undefined ? "" : ` ± ${percent(error)}`}`;
+  const evidence = `recovery ${percent(recovery.value)}${!error ? "" : ` ± ${percent(error)}`}`;
   if (recovery.value < 0.9) return [finding("recovery-low", at, evidence)];
   return recovery.value > 1.1 ? [finding("recovery-high", at, evidence)] : [];
 }

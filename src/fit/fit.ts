@@ -25,6 +25,8 @@ export interface FitOptions {
   readonly starts?: number;
   /** Of the low-discrepancy starts. Default 1. */
   readonly seed?: number;
+  /** Compare a network without parameters as it stands (a rival in a study) instead of refusing it. */
+  readonly asItStands?: boolean;
   /** Asked often; true ends the fit with the best so far, marked. */
   readonly cancelled?: () => boolean;
   readonly progress?: Watch["progress"];
@@ -54,7 +56,9 @@ export function fitWith(
 ): FitOutcome {
   const { report, problems } = collector();
   for (const trial of trials) checkTrial(network, trial, report);
-  const setup = hasErrors(problems) ? undefined : prepare(model, network, trials, options.free, report);
+  const setup = hasErrors(problems)
+    ? undefined
+    : prepare(model, network, trials, options.free, report, options.asItStands);
   if (!setup) return { fit: undefined, problems };
   const watch: Watch = { cancelled: () => options.cancelled?.() ?? false, progress: options.progress ?? (() => {}) };
 
@@ -80,6 +84,7 @@ export function fitWith(
 const searchPoints = 600;
 
 function search(setup: Setup, problem: LinearProblem, file: Float64Array, plan: StartPlan, watch: Watch): SearchResult {
+  if (file.length === 0) return alone(problem, file);
   const blocks = thinned(setup.blocks, searchPoints);
   if (blocks === setup.blocks) return searchFrom(problem, file, plan, watch);
   const coarse: Setup = { ...setup, blocks, observations: countOf(blocks) };
@@ -88,6 +93,13 @@ function search(setup: Setup, problem: LinearProblem, file: Float64Array, plan: 
   const best = { ...descend(problem, found.best.x, fully, watch), reached: found.best.reached };
   const others = found.optima.slice(1).map((o) => ({ ...o, sum: problem.evaluate(o.x)?.ofAll ?? Infinity }));
   return { best, optima: [best, ...others], cancelled: watch.cancelled() };
+}
+
+/** Nothing to search: the only point there is. */
+function alone(problem: LinearProblem, x: Float64Array): SearchResult {
+  const at = problem.evaluate(x);
+  const best = at && { x, sum: at.ofAll, converged: true, reached: 1 };
+  return { best, optima: best ? [best] : [], cancelled: false };
 }
 
 function resultOf(setup: Setup, settled: Settled, found: SearchResult): Fit {

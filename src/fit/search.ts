@@ -56,8 +56,8 @@ export function searchFrom(problem: Problem, file: Float64Array, plan: StartPlan
   const walks = delayWalks(setup, about);
   const steps = walks.reduce((sum, w) => sum + w.at.length, 0);
   const counts = startCounts(setup, steps, plan);
-  const walked = betterHalf(problem, walkStarts(walks, about, counts.walked));
-  const drawn = betterHalf(problem, drawnStarts(setup, counts.drawn, plan.seed, allowed));
+  const walked = betterHalf(problem, walkStarts(walks, about, counts.walked), watch);
+  const drawn = betterHalf(problem, drawnStarts(setup, counts.drawn, plan.seed, allowed, watch.cancelled), watch);
   planned = rough.length + walked.length + drawn.length;
   descendFrom(walked);
   descendFrom(drawn);
@@ -74,8 +74,11 @@ export function searchFrom(problem: Problem, file: Float64Array, plan: StartPlan
 }
 
 /** Starts with the smaller sums of squares, best first; those that make no vessel are left out. */
-function betterHalf(problem: Problem, starts: readonly Float64Array[]): Float64Array[] {
-  const rated = starts.map((x) => ({ x, sum: problem.evaluate(x)?.ofAll ?? Infinity }));
+function betterHalf(problem: Problem, starts: readonly Float64Array[], watch: Watch): Float64Array[] {
+  const rated = starts.map((x) => ({
+    x,
+    sum: watch.cancelled() ? Infinity : (problem.evaluate(x)?.ofAll ?? Infinity),
+  }));
   const possible = rated.filter((r) => Number.isFinite(r.sum)).sort((a, b) => a.sum - b.sum);
   return possible.slice(0, Math.ceil(starts.length / 2)).map((r) => r.x);
 }

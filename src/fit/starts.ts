@@ -84,10 +84,11 @@ export function drawnStarts(
   count: number,
   seed: number,
   allowed: (x: Float64Array) => boolean,
+  cancelled: () => boolean,
 ): Float64Array[] {
   const next = lowDiscrepancy(setup.coordinates.length, seed);
   const starts: Float64Array[] = [];
-  for (let tries = 0; starts.length < count && tries < 50 * count; tries++) {
+  for (let tries = 0; starts.length < count && tries < 50 * count && !cancelled(); tries++) {
     const point = next();
     const x = Float64Array.from(setup.coordinates, (c, j) => c.draw[0] + point[j] * (c.draw[1] - c.draw[0]));
     if (allowed(x)) starts.push(x);

@@ -24,7 +24,8 @@ export function unitBook(values: readonly (Value | undefined)[], flow: Value | u
   for (const v of values) {
     if (v?.unit && !book.has(dimensionKey(v.unit.dimension))) book.set(dimensionKey(v.unit.dimension), v.unit);
   }
-  const time = timeOf(flow?.unit) ?? book.get(dimensionKey(dimensions.time)) ?? known("min");
+  const flowUnit = flow?.unit ?? book.get(dimensionKey(dimensions.flow));
+  const time = timeOf(flowUnit) ?? book.get(dimensionKey(dimensions.time)) ?? known("min");
   for (const unit of [time, ...usual]) {
     if (!book.has(dimensionKey(unit.dimension))) book.set(dimensionKey(unit.dimension), unit);
   }

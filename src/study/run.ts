@@ -76,6 +76,7 @@ export function runStudy(study: Study, options: StudyOptions = {}): StudyResult 
 function fitRival(study: Study, rival: Rival, options: StudyOptions, cancelled: () => boolean) {
   const fitOptions: FitOptions = {
     seed: study.seed,
+    asItStands: true,
     cancelled,
     ...(options.starts === undefined ? {} : { starts: options.starts }),
   };

@@ -55,6 +55,32 @@ export function demoLog(log: Log): string {
   return csv(times, values);
 }
 
+/** The samples of the README's tour: three blanks and 40 grab samples of a 10 L tank with a quiet corner of 2.6 L (demo). */
+export function tourSamples(): string {
+  const folder = "networks/tour";
+  const text = (name: string) => readFileSync(`${folder}/${name}.yaml`, "utf8");
+  const after = Array.from({ length: 40 }, (_, i) => Math.round(10 * (0.1 + 89.9 * (i / 39) ** 1.7)) / 10);
+  const minutes = [-3, -2, -1, ...after];
+  const table = (values: readonly string[]) =>
+    `t,salt\nmin,g/L\n${minutes.map((t, i) => `${t},${values[i]}`).join("\n")}\n`;
+  const network = parseNetwork(text("corner"), { path: `${folder}/corner.yaml` }).document;
+  const trial = parseTrial(text("salt"), {
+    path: `${folder}/salt.yaml`,
+    read: () => table(minutes.map(() => "0.1")),
+  }).document;
+  const series = trial?.readings[0].series;
+  const plant = network && compile(network, { quiet: 2.6e-3, renewal: 0.09e-3 / 60 }).plant;
+  if (!plant || !trial || !series) throw new Error("the tour does not parse");
+  const [c] = trialResponse(plant, trial, [series]);
+  const random = uniformSource(42);
+  return table(
+    Array.from(c, (x) => {
+      const normal = Math.sqrt(-2 * Math.log(random())) * Math.cos(2 * Math.PI * random());
+      return (x + 0.004 + 0.003 * normal).toFixed(4);
+    }),
+  );
+}
+
 function csv(times: readonly number[], values: readonly string[]): string {
   const clock = (s: number) =>
     [Math.floor(s / 3600), Math.floor(s / 60) % 60, s % 60].map((x) => String(x).padStart(2, "0")).join(":");

@@ -43,6 +43,7 @@ function makes(result: StudyResult): string[] {
     const unit = readingUnit(duty, p.name, p.unit);
     const now = `${duty.title}: ${p.name} ${estimateLine(estimate(p.value, p.interval95, unit))}`;
     if (!p.bounds || p.bounds.apply === "no") return [`${now}.`];
+    if (p.bounds.position === undefined) return [`${now}; with these rates the residence times alone fix it.`];
     const low = estimateLine(estimate(Math.min(p.bounds.segregated, p.bounds.maximumMixedness), undefined, unit));
     const high = estimateLine(estimate(Math.max(p.bounds.segregated, p.bounds.maximumMixedness), undefined, unit));
     return [`${now}; late or early mixing of the same flow pattern would give ${low} to ${high}.`];
