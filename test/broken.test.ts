@@ -1,9 +1,9 @@
 import { readdirSync, readFileSync } from "node:fs";
 import { expect, test } from "vitest";
 import { parseAny } from "../src/parse/any.js";
-import { catalogue } from "../src/problems/catalogue.js";
 import { libraryEntries } from "../src/problems/catalogue/library.js";
 import { runEntries } from "../src/problems/catalogue/runs.js";
+import { catalogue } from "../src/problems/catalogue.js";
 import { printProblems } from "../src/problems/print.js";
 
 /** Broken documents, each with the very text that a user sees. Healthy files that they name stand in `parts`. */
@@ -41,6 +41,29 @@ test("file-too-large", () => {
 test("every code that a file can show has a broken example, named by it", () => {
   const ofFiles = Object.keys(catalogue).filter((code) => !(code in runEntries) && !(code in libraryEntries));
   expect(ofFiles.filter((code) => !seen.has(code))).toEqual([]);
+});
+
+/** What only a run can find, and the tests that show it. */
+const shownBy: Record<keyof typeof runEntries, string> = {
+  "unknown-free": "fit/findings.test.ts",
+  "nothing-to-fit": "fit/findings.test.ts",
+  "no-points": "fit/findings.test.ts",
+  "too-few-points": "fit/run-codes.test.ts",
+  "no-start": "fit/run-codes.test.ts",
+  "fit-not-converged": "fit/run-codes.test.ts",
+  "fit-cancelled": "fit/findings.test.ts",
+  "parameter-at-bound": "fit/findings.test.ts",
+  "cannot-tell": "fit/findings.test.ts",
+  "strongly-correlated": "fit/run-codes.test.ts",
+  "wide-interval": "fit/run-codes.test.ts",
+  "interval-cut": "fit/run-codes.test.ts",
+  "residuals-correlated": "fit/uncertainty.test.ts",
+  "several-optima": "fit/run-codes.test.ts",
+  "scale-not-positive": "fit/findings.test.ts",
+};
+
+test.each(Object.entries(shownBy))("%s is shown by %s", (code, file) => {
+  expect(readFileSync(new URL(file, import.meta.url), "utf8")).toContain(`"${code}"`);
 });
 
 test("no broken example is without its text, no text without its example", () => {

@@ -30,7 +30,9 @@ describe("what only a fit can find", () => {
       { bypass: 0, corner: 0.02, renewal: 2e-5 },
       { injection: pulse, at: "out", times: every(10, 3) },
     );
-    expect(fit(corner, [trial]).problems.map((p) => p.message)).toEqual([
+    const { problems } = fit(corner, [trial]);
+    expect(problems.map((p) => p.code)).toEqual(["too-few-points"]);
+    expect(problems.map((p) => p.message)).toEqual([
       "3 points cannot fix 3 unknowns (parameters, baselines and scales)",
     ]);
   });
