@@ -4,7 +4,7 @@ import { chmodSync, existsSync, readFileSync, rmSync } from "node:fs";
 import { join } from "node:path";
 import { promisify } from "node:util";
 import { build } from "esbuild";
-import { root, writeSchemas } from "./schemas.mjs";
+import { root, writeManual, writeSchemas } from "./schemas.mjs";
 
 const { version } = JSON.parse(readFileSync(join(root, "package.json"), "utf8"));
 const dist = join(root, "dist");
@@ -45,6 +45,7 @@ async function types() {
 
 try {
   await writeSchemas();
+  await writeManual();
   rmSync(dist, { recursive: true, force: true });
   await Promise.all([
     // The shebang comes from the entry file itself, so that only it carries one, not the chunks.

@@ -36,17 +36,23 @@ export function schemasAreStale() {
   );
 }
 
-async function loadDeclarations() {
+const loadDeclarations = () =>
+  load(`
+    export { documentSchemas } from "./src/schema/json-schema.ts";
+    export { validatorSchema } from "./src/schema/bare.ts";
+    export { documentShapes } from "./src/schema/documents.ts";
+    export { kinds } from "./src/compartments/index.ts";`);
+
+/** Writes the reference manual from the declarations and the broken examples of the tests. */
+export async function writeManual() {
+  const { manualOf } = await load(`export { manualOf } from "./.build/manual.ts";`);
+  writeIfNew(join(root, "schemas", "README.md"), manualOf(root));
+}
+
+/** Runs TypeScript of ours: bundles it and imports the bundle. */
+async function load(contents) {
   const { outputFiles } = await build({
-    stdin: {
-      contents: `
-        export { documentSchemas } from "./src/schema/json-schema.ts";
-        export { validatorSchema } from "./src/schema/bare.ts";
-        export { documentShapes } from "./src/schema/documents.ts";
-        export { kinds } from "./src/compartments/index.ts";`,
-      resolveDir: root,
-      loader: "ts",
-    },
+    stdin: { contents, resolveDir: root, loader: "ts" },
     bundle: true,
     format: "esm",
     platform: "node",

@@ -24,5 +24,6 @@ export const layers = [
   "study",
   "draw",
   "report",
+  "manual",
   "cli",
 ] as const;

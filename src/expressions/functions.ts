@@ -4,6 +4,9 @@ import { call, difference, negative, number, power, product, quotient, sum } fro
 
 /** All about one function: what it takes, what it gives, and its derivative. */
 export interface MathFunction {
+  /** One sentence for the manual, and a call as one would write it; only what a file may call has them. */
+  readonly says?: string;
+  readonly example?: string;
   readonly least: number;
   readonly most: number;
   /** "pure": takes pure numbers. "alike": all arguments of one dimension, whatever it is. */
@@ -18,7 +21,14 @@ export interface MathFunction {
 const ratio = (): Dimension => dimensions.ratio;
 const same = (d: Dimension): Dimension => d;
 
-const pure = (value: (x: number) => number, slope: (a: Expression) => Expression): MathFunction => ({
+const pure = (
+  value: (x: number) => number,
+  slope: (a: Expression) => Expression,
+  says: string,
+  example: string,
+): MathFunction => ({
+  says,
+  example,
   least: 1,
   most: 1,
   takes: "pure",
@@ -29,11 +39,13 @@ const pure = (value: (x: number) => number, slope: (a: Expression) => Expression
 
 /** The functions that a file may call. */
 export const functions: Readonly<Record<string, MathFunction>> = {
-  exp: pure(Math.exp, (a) => call("exp", a)),
-  log: pure(Math.log, (a) => quotient(number(1), a)),
-  log10: pure(Math.log10, (a) => quotient(number(1 / Math.LN10), a)),
-  tanh: pure(Math.tanh, (a) => bell(a)),
+  exp: pure(Math.exp, (a) => call("exp", a), "e to this power.", "exp(0.5)"),
+  log: pure(Math.log, (a) => quotient(number(1), a), "The natural logarithm.", "log(2)"),
+  log10: pure(Math.log10, (a) => quotient(number(1 / Math.LN10), a), "The logarithm to base 10.", "log10(1000)"),
+  tanh: pure(Math.tanh, (a) => bell(a), "The hyperbolic tangent.", "tanh(0.5)"),
   sqrt: {
+    says: "The square root; of an area it is a length.",
+    example: "sqrt(4 m2)",
     least: 1,
     most: 1,
     takes: "alike",
@@ -42,6 +54,8 @@ export const functions: Readonly<Record<string, MathFunction>> = {
     derivative: ([a], [da]) => quotient(da, product(number(2), call("sqrt", a))),
   },
   abs: {
+    says: "The size without its sign.",
+    example: "abs(3 L - 5 L)",
     least: 1,
     most: 1,
     takes: "alike",
@@ -50,6 +64,8 @@ export const functions: Readonly<Record<string, MathFunction>> = {
     derivative: ([a], [da]) => call("of-the-largest", a, negative(a), da, negative(da)),
   },
   min: {
+    says: "The smallest of several values of one kind.",
+    example: "min(100 L, 2 L)",
     least: 1,
     most: 99,
     takes: "alike",
@@ -58,6 +74,8 @@ export const functions: Readonly<Record<string, MathFunction>> = {
     derivative: (args, slopes) => call("of-the-smallest", ...args, ...slopes),
   },
   max: {
+    says: "The largest of several values of one kind.",
+    example: "max(100 L, 2 L)",
     least: 1,
     most: 99,
     takes: "alike",
@@ -67,6 +85,8 @@ export const functions: Readonly<Record<string, MathFunction>> = {
   },
   /** From 0 to 1 as x passes `at`: (1 + tanh((x - at) / width)) / 2, so 12 % to 88 % within one width on either side. */
   "step-up": {
+    says: "A smooth switch from 0 to 1 as the first passes the second: 12 % to 88 % within one width (the third) on either side.",
+    example: "step-up(300 K, 310 K, 5 K)",
     least: 3,
     most: 3,
     takes: "alike",

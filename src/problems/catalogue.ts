@@ -9,6 +9,20 @@ import { studyEntries } from "./catalogue/study.js";
 import { valueEntries } from "./catalogue/values.js";
 import { yamlEntries } from "./catalogue/yaml.js";
 
+/** The catalogue by what its problems are about, as the manual has it. */
+export const catalogueGroups = {
+  "A file as YAML": yamlEntries,
+  "Keys and what stands at them": shapeEntries,
+  "Values, units, expressions": valueEntries,
+  Names: nameEntries,
+  "Streams, flows, volumes": flowEntries,
+  "Trials and their tables": dataEntries,
+  "Chemistries and duties": chemistryEntries,
+  "Fits: before they run, and what to know of their results": runEntries,
+  Studies: studyEntries,
+  "Tools for a library": libraryEntries,
+} as const;
+
 /** Every problem that backmix can report: code, wording, fix. Codes are stable; wording may improve. */
 export const catalogue = {
   ...yamlEntries,

@@ -7,6 +7,8 @@ export interface CatalogueEntry<D> {
   readonly severity: Severity;
   readonly says: (data: D) => string;
   readonly fix: string | ((data: D) => string);
+  /** What the manual shows, for a problem that no file can show by itself (`test/broken/` has the others). */
+  readonly example?: D;
 }
 
 /** Builds an entry; gives the data its type. */

@@ -17,54 +17,59 @@ const siemens = times(d.conductivity, d.length);
  * Symbols, prefixes that engineers put before them, size and dimension. Exact factors are those of NIST Special
  * Publication 811 (2008), Appendix B, and of the BIPM SI brochure (9th ed., 2019); inexact ones are marked.
  */
-const rows: readonly (readonly [symbols: string, prefixes: string, up: number, down: number, dimension: Dimension])[] =
-  [
-    ["m", "k d c m u n", 1, 1, d.length],
-    ["in", "", 254, 10000, d.length],
-    ["ft", "", 3048, 10000, d.length],
-    ["L", "M k h d c m u n", 1, 1000, d.volume],
-    ["l", "k h d c m u n", 1, 1000, d.volume],
-    ["gal", "", 3785411784, 1e12, d.volume],
-    ["bbl", "", 158987294928, 1e12, d.volume],
-    ["gpm", "", 3785411784, 60e12, d.flow],
-    ["MGD", "", 3785411784, 86400e6, d.flow],
-    ["s", "m u n", 1, 1, d.time],
-    ["min", "", 60, 1, d.time],
-    ["h", "", 3600, 1, d.time],
-    ["d", "", 86400, 1, d.time],
-    ["wk", "", 604800, 1, d.time],
-    ["g", "k m u n", 1, 1000, d.mass],
-    ["t", "", 1000, 1, d.mass],
-    ["lb", "", 45359237, 1e8, d.mass],
-    ["oz", "", 28349523125, 1e12, d.mass],
-    ["mol", "k m u n", 1, 1, d.amount],
-    ["K", "m", 1, 1, d.temperature],
-    ["N", "k m", 1, 1, force],
-    ["Pa", "M k h m", 1, 1, d.pressure],
-    ["bar", "m", 100000, 1, d.pressure],
-    ["atm", "", 101325, 1, d.pressure],
-    ["psi", "", 6894.757, 1, d.pressure], // NIST SP 811, 7 digits
-    ["mmHg", "", 133.3224, 1, d.pressure], // NIST SP 811, 7 digits
-    ["J", "G M k m", 1, 1, d.energy],
-    ["cal", "k", 4184, 1000, d.energy], // thermochemical
-    ["Wh", "M k", 3600, 1, d.energy],
-    ["W", "G M k m u", 1, 1, d.power],
-    ["A", "m u", 1, 1, current],
-    ["V", "k m u", 1, 1, over(d.power, current)],
-    ["S", "m u n", 1, 1, siemens],
-    ["Hz", "k", 1, 1, d.frequency],
-    ["rpm", "", 1, 60, d.frequency],
-    ["Bq", "T G M k m", 1, 1, d.frequency],
-    ["Ci", "m u n", 3.7e10, 1, d.frequency],
-    ["CFU PFU cells particles", "", 1, 1, d.ratio],
-    ["%", "", 1, 100, d.ratio],
-    ["ppm", "", 1, 1e6, d.ratio],
-    ["ppb", "", 1, 1e9, d.ratio],
-    ["counts", "", 1, 1, d.signal],
-    ["cps", "", 1, 1, over(d.signal, d.time)],
-    ["cpm", "", 1, 60, over(d.signal, d.time)],
-    ["AU NTU", "", 1, 1, d.signal],
-  ];
+export const unitRows: readonly (readonly [
+  symbols: string,
+  prefixes: string,
+  up: number,
+  down: number,
+  dimension: Dimension,
+])[] = [
+  ["m", "k d c m u n", 1, 1, d.length],
+  ["in", "", 254, 10000, d.length],
+  ["ft", "", 3048, 10000, d.length],
+  ["L", "M k h d c m u n", 1, 1000, d.volume],
+  ["l", "k h d c m u n", 1, 1000, d.volume],
+  ["gal", "", 3785411784, 1e12, d.volume],
+  ["bbl", "", 158987294928, 1e12, d.volume],
+  ["gpm", "", 3785411784, 60e12, d.flow],
+  ["MGD", "", 3785411784, 86400e6, d.flow],
+  ["s", "m u n", 1, 1, d.time],
+  ["min", "", 60, 1, d.time],
+  ["h", "", 3600, 1, d.time],
+  ["d", "", 86400, 1, d.time],
+  ["wk", "", 604800, 1, d.time],
+  ["g", "k m u n", 1, 1000, d.mass],
+  ["t", "", 1000, 1, d.mass],
+  ["lb", "", 45359237, 1e8, d.mass],
+  ["oz", "", 28349523125, 1e12, d.mass],
+  ["mol", "k m u n", 1, 1, d.amount],
+  ["K", "m", 1, 1, d.temperature],
+  ["N", "k m", 1, 1, force],
+  ["Pa", "M k h m", 1, 1, d.pressure],
+  ["bar", "m", 100000, 1, d.pressure],
+  ["atm", "", 101325, 1, d.pressure],
+  ["psi", "", 6894.757, 1, d.pressure], // NIST SP 811, 7 digits
+  ["mmHg", "", 133.3224, 1, d.pressure], // NIST SP 811, 7 digits
+  ["J", "G M k m", 1, 1, d.energy],
+  ["cal", "k", 4184, 1000, d.energy], // thermochemical
+  ["Wh", "M k", 3600, 1, d.energy],
+  ["W", "G M k m u", 1, 1, d.power],
+  ["A", "m u", 1, 1, current],
+  ["V", "k m u", 1, 1, over(d.power, current)],
+  ["S", "m u n", 1, 1, siemens],
+  ["Hz", "k", 1, 1, d.frequency],
+  ["rpm", "", 1, 60, d.frequency],
+  ["Bq", "T G M k m", 1, 1, d.frequency],
+  ["Ci", "m u n", 3.7e10, 1, d.frequency],
+  ["CFU PFU cells particles", "", 1, 1, d.ratio],
+  ["%", "", 1, 100, d.ratio],
+  ["ppm", "", 1, 1e6, d.ratio],
+  ["ppb", "", 1, 1e9, d.ratio],
+  ["counts", "", 1, 1, d.signal],
+  ["cps", "", 1, 1, over(d.signal, d.time)],
+  ["cpm", "", 1, 60, over(d.signal, d.time)],
+  ["AU NTU", "", 1, 1, d.signal],
+];
 
 const sizes: Readonly<Record<string, readonly [up: number, down: number]>> = {
   T: [1e12, 1],
@@ -165,9 +170,9 @@ export const otherSpellings: ReadonlyMap<string, string> = new Map(
 function spellOut(): Map<string, UnitSymbol> {
   const all = new Map<string, UnitSymbol>();
   // Whole symbols first: "min" is a minute, never a milli-inch.
-  for (const [names, , up, down, dimension] of rows)
+  for (const [names, , up, down, dimension] of unitRows)
     for (const name of names.split(" ")) all.set(name, { up, down, offset: 0, dimension });
-  for (const [names, prefixes, up, down, dimension] of rows) {
+  for (const [names, prefixes, up, down, dimension] of unitRows) {
     for (const name of names.split(" ")) {
       for (const prefix of prefixes.split(" ").filter(Boolean)) {
         const [more, less] = sizes[prefix];

@@ -8,40 +8,47 @@ export const runEntries = {
       `'${d.name}' is no parameter of this network${d.nearest ? `; did you mean '${d.nearest}'?` : ""}`,
     fix: (d) =>
       d.names.length > 0 ? `free one of ${d.names.join(", ")}` : "list what a fit may move under `parameters:` first",
+    example: { name: "bypas", nearest: "bypass", names: ["bypass", "riser"] },
   }),
   "nothing-to-fit": entry({
     severity: "error",
     says: (_: Record<never, never>) => "the network has no parameters, so there is nothing to fit",
     fix: "move what is not known from `constants:` to `parameters:`, with a value and bounds: `riser: {value: 150 L, between: [5 L, 480 L]}`",
+    example: {},
   }),
   "no-points": entry({
     severity: "error",
     says: (d: { trials: number }) =>
       d.trials === 0 ? "there is no trial to fit to" : "no trial has a reading with points that are not left out",
     fix: "give at least one reading a `file:` with times and values",
+    example: { trials: 1 },
   }),
   "too-few-points": entry({
     severity: "error",
     says: (d: { points: number; unknowns: number }) =>
       `${d.points} points cannot fix ${d.unknowns} unknowns (parameters, baselines and scales)`,
     fix: "free fewer parameters, fit more trials at once, or take baseline and scale as known",
+    example: { points: 5, unknowns: 6 },
   }),
   "no-start": entry({
     severity: "error",
     says: (d: { tried: number }) => `none of ${d.tried} starting points inside the bounds makes a possible vessel`,
     fix: "check bounds and `requires:`: at the file's own values every volume and flow must be positive and every requirement must hold",
+    example: { tried: 64 },
   }),
   "fit-not-converged": entry({
     severity: "warning",
     says: (d: { evaluations: number }) =>
       `the fit did not settle in ${d.evaluations} evaluations; these are the best values found`,
     fix: "start nearer, narrow the bounds, or free fewer parameters",
+    example: { evaluations: 2000 },
   }),
   "fit-cancelled": entry({
     severity: "warning",
     says: (d: { evaluations: number }) =>
       `the fit was stopped after ${d.evaluations} evaluations; these are the best values found`,
     fix: "let it run to its end",
+    example: { evaluations: 412 },
   }),
   "parameter-at-bound": entry({
     severity: "warning",
@@ -49,6 +56,7 @@ export const runEntries = {
       `${d.name} ended at its ${d.side} bound, ${d.bound}: the data would take it further`,
     fix: (d) =>
       `widen the bounds of ${d.name} if physics allows, else leave out the part of the network that it describes`,
+    example: { name: "bypass", side: "lower", bound: "0 %" },
   }),
   "cannot-tell": entry({
     severity: "warning",
@@ -60,41 +68,48 @@ export const runEntries = {
       d.names.length === 1
         ? `keep ${d.names[0]} at a known value, or take a reading that it acts on`
         : `keep one of them at a known value, or add a trial at another flow or a reading at another place`,
+    example: { names: ["riser", "delay"] },
   }),
   "strongly-correlated": entry({
     severity: "warning",
     says: (d: { a: string; b: string; r: number }) =>
       `${d.a} and ${d.b} can hardly be told apart (correlation ${d.r.toFixed(3).replace("-", "−")})`,
     fix: "add a trial at another flow or a reading at another place, or keep one of the two at a known value",
+    example: { a: "corner", b: "renewal", r: -0.994 },
   }),
   "wide-interval": entry({
     severity: "warning",
     says: (d: { name: string }) => `the data leave ${d.name} anywhere between its bounds`,
     fix: (d) => `do not quote ${d.name}; keep it at a known value or measure longer, denser or at another place`,
+    example: { name: "renewal" },
   }),
   "interval-cut": entry({
     severity: "warning",
     says: (d: { name: string; side: "lower" | "upper" | "lower and upper" }) =>
       `the interval of ${d.name} is cut at its ${d.side} bound`,
     fix: (d) => `read the interval of ${d.name} as one-sided, or widen its bounds if physics allows`,
+    example: { name: "bypass", side: "lower" },
   }),
   "residuals-correlated": entry({
     severity: "warning",
     says: (d: { lag1: number; points: number; effective: number }) =>
       `neighbouring residuals hang together (correlation ${d.lag1.toFixed(2)}): ${d.points} points say as much as ${d.effective.toFixed(0)} independent ones`,
     fix: "intervals are widened for it; look for what the model lacks, or for drift and smoothing in the logger",
+    example: { lag1: 0.62, points: 780, effective: 183 },
   }),
   "several-optima": entry({
     severity: "warning",
     says: (d: { others: number }) =>
       `${d.others === 1 ? "another set of values fits" : `${d.others} other sets of values fit`} the data almost as well`,
     fix: "look at the other optima before using the values; another trial or a known value would decide between them",
+    example: { others: 1 },
   }),
   "scale-not-positive": entry({
     severity: "warning",
     says: (d: { key: string }) =>
       `the best scale of '${d.key}' is not positive: this reading does not follow the model at all`,
     fix: "check times, injection and place of the reading; `scale: known` if the amount is trusted",
+    example: { key: "Salt pulse/product" },
   }),
 };
 

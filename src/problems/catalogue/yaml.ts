@@ -16,6 +16,7 @@ export const yamlEntries = {
     severity: "error",
     says: (d) => `the file has ${d.megabytes} MB; a document may have 10 MB`,
     fix: "keep tables in CSV files and name them here",
+    example: { megabytes: 11 },
   }),
   "too-deep": entry<{ limit: number }>({
     severity: "error",
