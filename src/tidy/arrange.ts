@@ -38,19 +38,29 @@ function order(piece: CollectionPiece, { keys }: RecordShape): void {
   const rank = new Map(Object.keys(keys).map((key, i) => [key, i]));
   const rankOf = ({ name }: Part): number => rank.get(name) ?? rank.size;
   const first = piece.parts[0];
-  const waiting = piece.parts.map((part) => ({ part, anchors: anchorsIn(part.value) }));
-  const sorted: Part[] = [];
-  while (waiting.length > 0) {
-    let next = 0;
-    for (let i = 1; i < waiting.length; i++) {
-      const free = waiting.slice(0, i).every((earlier) => !mustPrecede(earlier.anchors, waiting[i].anchors));
-      if (free && rankOf(waiting[i].part) < rankOf(waiting[next].part)) next = i;
-    }
-    sorted.push(waiting.splice(next, 1)[0].part);
-  }
+  const anchors = new Map(piece.parts.map((part) => [part, anchorsIn(part.value)]));
+  const sorted = [...anchors.values()].every(({ named }) => named.size === 0)
+    ? piece.parts.toSorted((a, b) => rankOf(a) - rankOf(b))
+    : sortedWithin(piece.parts, rankOf, anchors);
   piece.parts = sorted;
   // Whoever was first had no empty line before it to bring along.
   if (first && sorted[0] !== first) swapBlanks(sorted[0], first);
+}
+
+/** By rank as far as anchors and aliases let it: always the lowest of those that nothing left must precede. */
+function sortedWithin(
+  parts: readonly Part[],
+  rankOf: (part: Part) => number,
+  anchors: ReadonlyMap<Part, Anchors>,
+): Part[] {
+  const waiting = [...parts];
+  const before = (a: Part, b: Part): boolean => mustPrecede(anchors.get(a) ?? none, anchors.get(b) ?? none);
+  return parts.map(() => {
+    const free = waiting.filter((part, i) => !waiting.slice(0, i).some((earlier) => before(earlier, part)));
+    const next = free.reduce((least, part) => (rankOf(part) < rankOf(least) ? part : least));
+    waiting.splice(waiting.indexOf(next), 1);
+    return next;
+  });
 }
 
 function swapBlanks(a: Part, b: Part): void {
@@ -70,6 +80,8 @@ interface Anchors {
   readonly named: ReadonlySet<string>;
   readonly used: ReadonlySet<string>;
 }
+
+const none: Anchors = { named: new Set(), used: new Set() };
 
 function anchorsIn(piece: Piece): Anchors {
   const [named, used] = [new Set<string>(), new Set<string>()];

@@ -1,6 +1,6 @@
 import { Parser } from "yaml";
-import type { CollectionPiece, EndComment, OwnComment, Part, Piece } from "./piece.js";
-import { columnOf, startsLine, startsLineAfterBlank } from "./source-lines.js";
+import type { CollectionPiece, OwnComment, Part, Piece } from "./piece.js";
+import { columnOf, indentAt, startsLine, startsLineAfterBlank } from "./source-lines.js";
 
 interface Comment {
   readonly at: number;
@@ -16,7 +16,7 @@ interface Comment {
  * with a line to itself to what follows it at its depth.
  */
 export function attachComments(text: string, root: CollectionPiece): void {
-  for (const comment of commentsIn(text)) attach(comment, root);
+  for (const comment of commentsIn(text)) attach(comment, root, text);
 }
 
 /** Comments in the order of the text. The lexer tells them from `#` in quotes and in block scalars. */
@@ -24,31 +24,32 @@ function commentsIn(text: string): Comment[] {
   const found: Comment[] = [];
   const walk = (token: unknown): void => {
     if (token === null || typeof token !== "object") return;
-    if (Array.isArray(token)) return token.forEach(walk);
     const { type, offset, source, ...inside } = token as { type?: string; offset?: number; source?: string };
     if (type === "comment" && offset !== undefined && source !== undefined) {
       found.push({
         at: offset,
         text: source.trimEnd(),
-        column: columnOf(text, offset),
+        // Behind the dash of an item it counts as above the item.
+        column: startsLine(text, offset) ? indentAt(text, offset) : columnOf(text, offset),
         own: startsLine(text, offset),
         blank: startsLineAfterBlank(text, offset),
       });
-    } else Object.values(inside).forEach(walk);
+    } else for (const value of Object.values(Array.isArray(token) ? token : inside)) walk(value);
   };
   for (const token of new Parser().parse(text)) walk(token);
   return found.sort((a, b) => a.at - b.at);
 }
 
-function attach(comment: Comment, piece: CollectionPiece): void {
+function attach(comment: Comment, piece: CollectionPiece, text: string): void {
   const last = piece.parts.findLastIndex((p) => p.from < comment.at);
   if (last < 0) {
     piece.parts[0].before.push(ownComment(comment));
     return;
   }
   const part = piece.parts[last];
-  if (isFilled(part.value) && belongs(comment, part.value, piece)) attach(comment, part.value);
-  else if (!comment.own) part.ends.push(endComment(comment));
+  if (isFilled(part.value) && belongs(comment, part.value, piece)) attach(comment, part.value, text);
+  else if (!comment.own)
+    part.ends.push({ text: comment.text, column: startsLine(text, part.from) ? comment.column : 0 });
   else (piece.parts[last + 1]?.before ?? piece.end).push(ownComment(comment));
 }
 
@@ -64,7 +65,6 @@ function belongs(comment: Comment, inner: CollectionPiece, outer: CollectionPiec
 const isFilled = (piece: Piece): piece is CollectionPiece => piece.type !== "scalar" && piece.parts.length > 0;
 
 const ownComment = ({ text, blank }: Comment): OwnComment => ({ text, blank });
-const endComment = ({ text, column }: Comment): EndComment => ({ text, column });
 
 /** True where a comment lies anywhere inside. */
 export function hasComments(piece: Piece): boolean {

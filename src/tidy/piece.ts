@@ -5,7 +5,7 @@ export interface OwnComment {
   readonly blank: boolean;
 }
 
-/** A comment at the end of a line, and the column (from 0) where the author began it. */
+/** A comment at the end of a line, and the column (from 0) where the author began it; 0 where that column means nothing. */
 export interface EndComment {
   readonly text: string;
   readonly column: number;

@@ -4,6 +4,10 @@ export const lineStartOf = (text: string, offset: number): number => text.lastIn
 /** Column of an offset, from 0. */
 export const columnOf = (text: string, offset: number): number => offset - lineStartOf(text, offset);
 
+/** Spaces at the beginning of the line that an offset lies in. */
+export const indentAt = (text: string, offset: number): number =>
+  text.slice(lineStartOf(text, offset)).search(/[^ ]|$/);
+
 /** True where nothing but space and list dashes stands before an offset on its line. */
 export const startsLine = (text: string, offset: number): boolean =>
   /^[\s-]*$/.test(text.slice(lineStartOf(text, offset), offset));

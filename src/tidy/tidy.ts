@@ -1,6 +1,6 @@
 import { parseDocument } from "yaml";
 import type { Problem } from "../problems/problem.js";
-import { collector } from "../problems/report.js";
+import { collector, hasErrors } from "../problems/report.js";
 import { checkShape, documentKind } from "../read/shape.js";
 import type { Tree } from "../read/tree.js";
 import { readYaml } from "../read/yaml.js";
@@ -8,7 +8,7 @@ import { documents } from "../schema/validators.js";
 import { arrange } from "./arrange.js";
 import { attachComments } from "./comments.js";
 import { cut } from "./cut.js";
-import { write } from "./write.js";
+import { takeHeader, write } from "./write.js";
 
 /** A text in canonical form, or the reasons why it is left alone. */
 export interface Tidied {
@@ -27,7 +27,7 @@ export function tidy(text: string, options: { readonly path?: string } = {}): Ti
   const { report, problems } = collector();
   const path = options.path ?? "-";
   const tree = readYaml({ path, text }, report);
-  if (!tree) return { text: undefined, problems };
+  if (!tree || hasErrors(problems)) return { text: undefined, problems };
   const kind = documentKind(tree);
   if (!kind) {
     checkShape(tree, "network", report);
@@ -36,8 +36,9 @@ export function tidy(text: string, options: { readonly path?: string } = {}): Ti
   const root = cut(text, parseDocument(text, { schema: "failsafe", uniqueKeys: false }));
   if (!root) return { text: undefined, problems };
   attachComments(text, root);
+  const header = takeHeader(root);
   arrange(root, documents[kind].shape);
-  const tidied = write(root);
+  const tidied = write(header, root);
   const again = readYaml({ path, text: tidied }, collector().report);
   if (!again || !sameMeaning(tree, again)) {
     report("not-tidied", tree.entries[0].key.at, {});
@@ -50,7 +51,9 @@ export function tidy(text: string, options: { readonly path?: string } = {}): Ti
 export function sameMeaning(a: Tree, b: Tree): boolean {
   if (a.type === "scalar") return b.type === "scalar" && a.text === b.text && a.plain === b.plain;
   if (a.type === "list") {
-    return b.type === "list" && a.items.length === b.items.length && a.items.every((x, i) => sameMeaning(x, b.items[i]));
+    return (
+      b.type === "list" && a.items.length === b.items.length && a.items.every((x, i) => sameMeaning(x, b.items[i]))
+    );
   }
   if (b.type !== "map" || a.entries.length !== b.entries.length) return false;
   const others = new Map(b.entries.map((e) => [e.key.text, e.value]));

@@ -5,25 +5,37 @@ import type { CollectionPiece, EndComment, OwnComment, Part, Piece, ScalarPiece 
 const width = 100;
 const step = 2;
 
+/**
+ * Takes the comments that speak of the whole file away from its first part: those above an empty line, and the line that
+ * tells editors the schema, which comes first.
+ */
+export function takeHeader({ parts }: CollectionPiece): OwnComment[] {
+  const first = parts[0];
+  const above = first.before;
+  const lastGap = above.findLastIndex((c) => c.blank);
+  const gap = first.blank ? above.length : Math.max(0, lastGap);
+  const header = above.filter((c, i) => i < gap || isModeline(c));
+  const rest = above.filter((c, i) => i >= gap && !isModeline(c));
+  above.splice(0, above.length, ...rest);
+  return header.sort((a, b) => Number(isModeline(b)) - Number(isModeline(a)));
+}
+
+const isModeline = ({ text }: OwnComment): boolean => /^#\s*yaml-language-server:/.test(text);
+
 /** The text of a document in canonical spacing, lines parted by `\n`. Comments at line ends keep their column where they can. */
-export function write(root: CollectionPiece): string {
-  const first = root.parts[0];
-  const header = first.before.splice(0).sort((a, b) => Number(isModeline(b)) - Number(isModeline(a)));
+export function write(header: readonly OwnComment[], root: CollectionPiece): string {
   const lines: string[] = [];
   header.forEach(({ text, blank }, i) => {
     if (blank && i > 0) lines.push("");
     lines.push(text);
   });
-  if (first.blank && lines.length > 0) lines.push("");
   writeParts(root, 0, lines);
   return `${lines.join("\n")}\n`;
 }
 
-const isModeline = ({ text }: OwnComment): boolean => /^#\s*yaml-language-server:/.test(text);
-
 function writeParts(piece: CollectionPiece, indent: number, lines: string[]): void {
   const pad = " ".repeat(indent);
-  let opened = true; // no empty line after the line that opens a collection
+  let opened = indent > 0 || lines.length === 0; // no empty line after the line that opens a collection
   const empty = (wanted: boolean): void => {
     if (wanted && !opened && lines.at(-1) !== "") lines.push("");
     opened = false;
