@@ -12,6 +12,7 @@ import type { Setup } from "./setup.js";
 /**
  * Gathers what a fit needs.
  * @param free  names of the parameters to estimate; undefined: all
+ * @param asItStands  a network without parameters is no fault: it is compared with the data as it stands
  * @returns undefined, with the reason reported, where there is nothing to fit, or nothing to fit to
  */
 export function prepare(
@@ -20,8 +21,9 @@ export function prepare(
   trials: readonly Trial[],
   free: readonly string[] | undefined,
   report: Report,
+  asItStands = false,
 ): Setup | undefined {
-  const parameters = freeParameters(network, free, report);
+  const parameters = freeParameters(network, free, report, asItStands);
   if (!parameters) return undefined;
   const blocks = blocksOf(trials);
   const observations = countOf(blocks);
@@ -38,13 +40,19 @@ export function prepare(
   return { network, env, trials, coordinates, held, constants, blocks, observations, model, cost };
 }
 
-function freeParameters(network: Network, free: readonly string[] | undefined, report: Report): Named[] | undefined {
+function freeParameters(
+  network: Network,
+  free: readonly string[] | undefined,
+  report: Report,
+  asItStands: boolean,
+): Named[] | undefined {
   const all = network.names.filter((n) => n.role === "parameter");
   const names = all.map((n) => n.name);
   const unknown = (free ?? []).filter((name) => !names.includes(name));
   for (const name of unknown) report("unknown-free", network.at, { name, nearest: nearest(name, names), names });
   if (unknown.length > 0) return undefined;
   const chosen = free ? all.filter((n) => free.includes(n.name)) : all;
-  if (chosen.length === 0) report("nothing-to-fit", network.at, {});
-  return chosen.length > 0 ? chosen : undefined;
+  if (chosen.length > 0 || asItStands) return chosen;
+  report("nothing-to-fit", network.at, {});
+  return undefined;
 }
