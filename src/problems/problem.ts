@@ -11,8 +11,10 @@ export interface CatalogueEntry<D> {
   readonly example?: D;
 }
 
-/** Builds an entry; gives the data its type. */
-export const entry = <D>(e: CatalogueEntry<D>): CatalogueEntry<D> => e;
+/** Builds an entry; the wording gives the data its type, the example only follows it. */
+export const entry = <D>(
+  e: Omit<CatalogueEntry<D>, "example"> & { readonly example?: NoInfer<D> },
+): CatalogueEntry<D> => e;
 
 /** A finding about an input: an error value, never thrown. */
 export interface Problem {
