@@ -2,14 +2,14 @@ import type { KeyShape, Shape } from "../shape.js";
 import { either, heading, later, list, name, named, oneOrMore, quantity, record, text } from "./common.js";
 
 const species: KeyShape = {
-  says: "What reacts, by name. A rate law uses the names as concentrations.",
+  says: "What reacts, by name. In a rate law the name stands for the concentration at that place and time; capitals are fine. `{}` where there is nothing to say of it.",
   required: true,
   example: "{A: {molar-mass: 88.1 g/mol}, B: {}, P: {}}",
   shape: named(
     record({
       "molar-mass": {
         shape: quantity("molar mass"),
-        says: "Molar mass, where amounts are given in grams.",
+        says: "Molar mass. It is needed where a duty feeds grams and a rate law counts moles, or the other way round.",
         example: "88.1 g/mol",
       },
       about: { shape: text, says: "What it is." },
@@ -18,7 +18,7 @@ const species: KeyShape = {
 };
 
 const constants: KeyShape = {
-  says: "Constants of the rate laws: a value, or a value at a temperature with an activation energy.",
+  says: "Constants of the rate laws: a value in any unit that makes the rate a concentration per time, or a value at a temperature with an activation energy. They may use one another, and `T`.",
   example: "{k1: {at: 298.15 K, value: 2 L/mol/min, activation: 45 kJ/mol}, k2: 0.5 1/min}",
   shape: named(
     either(
@@ -26,14 +26,18 @@ const constants: KeyShape = {
       record({
         value: {
           shape: quantity(),
-          says: "The value, at the temperature `at` where that is given.",
+          says: "The value, at the temperature `at` where that is given. A `±` is carried into every prediction.",
           required: true,
           example: "2 L/mol/min",
         },
-        at: { shape: quantity("temperature"), says: "The temperature at which it was measured.", example: "298.15 K" },
+        at: {
+          shape: quantity("temperature"),
+          says: "The temperature at which it was measured. With it goes `activation`.",
+          example: "298.15 K",
+        },
         activation: {
           shape: quantity("molar energy"),
-          says: "Activation energy of the Arrhenius law.",
+          says: "Activation energy E of the Arrhenius law, k(T) = value * exp(E / R * (1 / at - 1 / T)). With it goes `at`, and the duty must give a temperature.",
           example: "45 kJ/mol",
         },
         about: { shape: text, says: "What it means, and where it comes from." },
@@ -46,23 +50,23 @@ const reaction: Shape = record(
   {
     equation: {
       shape: text,
-      says: "The reaction, with whole stoichiometric numbers: `A + 2 B -> P`, or `<->` where it goes both ways.",
+      says: "The reaction, with whole stoichiometric numbers: `A + 2 B -> P`, or `<->` where it goes both ways (the rate is then that of forward less back).",
       example: "A + B -> P",
     },
     makes: {
       shape: named(quantity("ratio")),
-      says: "Instead of `equation`: made per unit of reaction, negative where used up. Numbers need not be whole.",
+      says: "Instead of `equation`: how much of each species one unit of the rate makes, negative where it is used up. Numbers need not be whole.",
       example: "{A: -1, P: 0.8}",
     },
     rate: {
       shape: text,
-      says: "The rate law, an expression over species, constants and `T`; or `mass-action` with `constant`.",
+      says: "The rate law, an expression over species, constants and `T` that comes out as concentration per time; or `mass-action`, which takes the orders from the equation and needs `constant`.",
       required: true,
       example: "k1 * A * B",
     },
     constant: {
       shape: oneOrMore(name),
-      says: "For `mass-action`: the name of the constant, or of both, forward and back.",
+      says: "For `mass-action` only: the name of the constant, or of both, forward and back, where the equation has `<->`.",
       example: "[k2, k3]",
     },
     heat: later("Heat of reaction, exothermic negative."),

@@ -37,7 +37,10 @@ export const heading = (kind: string, title: string, example: string): Record<st
     required: true,
     example: "1",
   },
-  notes: { shape: text, says: "Anything a reader should know: where the facts come from, what was assumed." },
+  notes: {
+    shape: text,
+    says: "Anything a reader should know: where the facts come from, what was assumed. It changes no result.",
+  },
 });
 
 /** `time: {column: t, unit: min}`: a column of a table, by header or by position from 1. */
@@ -48,24 +51,35 @@ export const column = (what: string, extra: Record<string, KeyShape> = {}): Shap
       says: `The column that holds ${what}: its header as it stands in the file, or its position from 1.`,
       required: true,
     },
-    unit: { shape: text, says: "The unit of the numbers in that column.", example: "min" },
+    unit: {
+      shape: text,
+      says: "The unit of the numbers in that column. Clock times have a `format` instead.",
+      example: "min",
+    },
     ...extra,
   });
 
 export const csv: KeyShape = {
-  says: "How the file is written, where backmix should not find out by itself.",
+  says: "How the table is written, where backmix should not find out by itself. Semicolons, decimal commas, a byte-order mark and a row of units under the headers are understood without it.",
   example: '{decimal: comma, separator: ";", header: 3}',
   shape: record({
-    decimal: { shape: choice("point", "comma"), says: "What stands before the decimals.", example: "comma" },
+    decimal: {
+      shape: choice("point", "comma"),
+      says: "What stands before the decimals: `1.5` or `1,5`.",
+      example: "comma",
+    },
     separator: {
       shape: text,
       says: "What stands between columns: `,`, `;`, `tab` or any one character.",
       example: '";"',
     },
-    header: { shape: whole(0), says: "The line that holds the headers, counted from 1; 0 where there is none." },
+    header: {
+      shape: whole(0),
+      says: "The line of the file that holds the headers, counted from 1; 0 where there is none and columns go by position.",
+    },
     missing: {
       shape: oneOrMore(text),
-      says: "Words that stand where a value is missing, besides an empty field, NaN, n/a and the like.",
+      says: "Words that stand where a value is missing, besides an empty field, NaN, n/a and the like. Any other word is an error with its row, never a silent zero.",
       example: "[Bad, Off scan]",
     },
   }),

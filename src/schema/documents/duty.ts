@@ -8,21 +8,21 @@ export const dutyShape: Shape = record({
   ...heading("duty", "The operating point.", "Normal production, 15 % up"),
   chemistry: {
     shape: text,
-    says: "The chemistry file, relative to this file. Without one: pure mixing.",
+    says: "The chemistry file, relative to this file. Without one nothing reacts: pure mixing of what the feeds bring.",
     example: "../../shared/chemistry/hydrolysis.yaml",
   },
   flows: {
     shape: named(either(quantity("flow"), upset), "dotted"),
-    says: "Flows by feed, where they are not the network's.",
+    says: "Flows by feed, where they are not those of the network.",
     example: "{feed: 11.5 L/min}",
   },
   with: {
     shape: named(quantity(), "dotted"),
-    says: "Constants set otherwise here.",
+    says: "Constants set otherwise here: those of the chemistry, and constants and parameters of the network.",
     example: "{k2: 0.4 L/mol/min ± 20 %}",
   },
   feeds: {
-    says: "What each feed brings: concentrations by species.",
+    says: "What each feed brings: concentrations by species. A species that is not named is not there. Every feed of the network must be named where there is a chemistry; `{}` is clean liquid.",
     example: "{feed: {A: 1 mol/L ± 1 %, B: 1.2 mol/L}}",
     shape: named(
       {
@@ -34,9 +34,13 @@ export const dutyShape: Shape = record({
       "dotted",
     ),
   },
-  temperature: { shape: quantity("temperature"), says: "The temperature everywhere (isothermal).", example: "60 degC" },
+  temperature: {
+    shape: quantity("temperature"),
+    says: "The temperature everywhere (isothermal). It must be given where a rate depends on it.",
+    example: "60 degC",
+  },
   report: {
-    says: "The figures that count: `conversion of A`, `yield of P from A`, `selectivity of P over S`, `log-removal of A`, `A at product`, `t10 at product`.",
+    says: "The figures that count, over all outlets together or, with `at NAME`, at one place: `conversion of A`, `yield of P from A`, `selectivity of P over S`, `log-removal of A`. A concentration (`A at product`) and a time by which so many % of a tracer pulse have left (`t10 at product`) are always at one place.",
     example: "[conversion of A, yield of P from A]",
     shape: list(text),
   },
