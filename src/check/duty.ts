@@ -14,8 +14,9 @@ export function checkDuty(network: Network, duty: Duty, report: Report): void {
     return false;
   };
   for (const [name, { at }] of duty.flows) look(name, at, "feed", feeds);
-  for (const [name, { at }] of duty.feeds) look(name, at, "feed", feeds);
-  if (duty.chemistry || duty.feeds.size > 0) {
+  const known = [...duty.feeds].filter(([name, { at }]) => look(name, at, "feed", feeds));
+  // A slip in the name of a feed is not that the feed is forgotten, too.
+  if (known.length === duty.feeds.size && (duty.chemistry || duty.feeds.size > 0)) {
     for (const feed of feeds) if (!duty.feeds.has(feed)) report("feed-not-given", duty.at, { feed });
   }
   checkSettings(network, duty, look, report);

@@ -23,7 +23,7 @@ export const streamTargets: Rule = (network, report, { nearest }) => {
   for (const node of [...network.feeds, ...network.compartments]) {
     for (const s of node.streams) {
       const feed = feeds.get(s.to);
-      if (feed) {
+      if (feed && !bodies.has(s.to) && !outlets.has(s.to)) {
         const into = feed.streams.length === 1 ? feed.streams[0].to : undefined;
         report("into-feed", s.at, { name: s.to, from: node.name, enters: into });
       } else if (!bodies.has(s.to) && !outlets.has(s.to)) {
