@@ -38,7 +38,8 @@ function survives(text: string, path: string): readonly Problem[] {
   const { problems } = parseAny(text, { path, read });
   const printed = printProblems(problems);
   expect((performance.now() - start) / 1000).toBeLessThan(patience);
-  expect(printed).not.toMatch(/\[object|\bNaN\b|: undefined|'undefined'/);
+  // What the text itself says may come back in a message.
+  for (const word of ["[object", "NaN", "undefined"]) if (!text.includes(word)) expect(printed).not.toContain(word);
   for (const { at } of problems) {
     expect(at.from).toBeGreaterThanOrEqual(0);
     expect(at.to).toBeGreaterThanOrEqual(at.from);
