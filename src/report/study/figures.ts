@@ -37,7 +37,7 @@ export function vesselFigure(ranked: Ranked, trials: readonly Trial[]): NamedFig
   return {
     name: "vessel",
     drawing: drawNetwork(sheet, { untitled: true }),
-    caption: `The vessel as fitted by '${rival.network.title}', at the flow of the file. Area is volume, width is flow; in brackets what the fit leaves possible (95 %).`,
+    caption: `The vessel as fitted by '${rival.network.title}', at the flow of the file. Area is volume, width is flow; behind a volume what the fit leaves possible (95 %).`,
   };
 }
 
