@@ -45,6 +45,11 @@ export function resolveTable(
   const valueUnit = resolveDetectorUnit(child(node, "value"), "unit", anyWord, report);
   const units = checkUnits(node, timeUnit, valueUnit, report);
   if (content === undefined) report("file-missing", fileNode.at, { file });
+  for (const key of ["time", "value"] as const) {
+    if (!child(node, key)) {
+      report("missing-key", fileNode.at, { key, where: "what names a table", example: columnExample[key] });
+    }
+  }
   if (content === undefined || !time || !value || !valueUnit || format === "faulty" || !units) return undefined;
   const spec = {
     file: full,
@@ -58,6 +63,8 @@ export function resolveTable(
   const read = readSeries({ path: full, text: decodeText(content) }, spec, report);
   return read && { ...read, valueUnit };
 }
+
+const columnExample = { time: "{column: t, unit: min}", value: "{column: c, unit: g/L}" } as const;
 
 const minute: Unit = { name: "min", factor: 60, offset: 0, dimension: dimensions.time };
 
