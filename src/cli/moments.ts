@@ -5,7 +5,6 @@ import type { Trial } from "../model/trial.js";
 import { parseNetwork } from "../parse/network.js";
 import { parseTrial } from "../parse/trial.js";
 import { collector } from "../problems/report.js";
-import { beside } from "../read/paths.js";
 import type { Context } from "./context.js";
 import type { Inputs } from "./inputs.js";
 import { momentsResultJson } from "./json/moments.js";
@@ -21,7 +20,7 @@ export interface MomentsOptions {
 /** `moments TRIAL`: the data alone; flow and volume come from the vessel where one is named. */
 export function moments(file: string, { vessel }: MomentsOptions, { inputs }: Context): Outcome {
   const trial = inputs.document(file, parseTrial);
-  const network = vesselFor(trial, file, vessel, inputs);
+  const network = vesselFor(trial, vessel, inputs);
   const result = readMoments(
     trial,
     network
@@ -40,8 +39,8 @@ export function moments(file: string, { vessel }: MomentsOptions, { inputs }: Co
   };
 }
 
-function vesselFor(trial: Trial, file: string, named: string | undefined, inputs: Inputs): Network | undefined {
-  const path = named ?? (trial.vessel === undefined ? undefined : beside(file, trial.vessel));
+function vesselFor(trial: Trial, named: string | undefined, inputs: Inputs): Network | undefined {
+  const path = named ?? trial.vessel;
   if (path === undefined) return undefined;
   const network = inputs.document(path, parseNetwork);
   const { report, problems } = collector();

@@ -11,8 +11,9 @@ export interface Trial {
   readonly title: string;
   readonly at: Span;
   readonly path: string;
-  /** Path of the network as written (relative to the trial), if any. */
+  /** Path of the network that the trial names, if any; no longer relative to the trial. */
   readonly vessel: string | undefined;
+  readonly vesselAt?: Span | undefined;
   /** Flows of the day by feed name. */
   readonly flows: ReadonlyMap<string, Value>;
   /** Constants that the day set otherwise. */

@@ -3,7 +3,6 @@ import type { Trial } from "../model/trial.js";
 import type { Problem } from "../problems/problem.js";
 import { collector } from "../problems/report.js";
 import { decodeText } from "../read/decode.js";
-import { beside } from "../read/paths.js";
 import { checkShape, documentKind } from "../read/shape.js";
 import { child, type MapNode } from "../read/tree.js";
 import { readYaml } from "../read/yaml.js";
@@ -44,7 +43,7 @@ export function parseAny(text: string, options: ParseOptions = {}): AnyDocument 
     return {
       kind,
       network: undefined,
-      problems: document ? [...problems, ...vesselOf(tree, document, options)] : problems,
+      problems: document ? [...problems, ...vesselOf(document, options)] : problems,
     };
   }
   const parse = { chemistry: parseChemistry, duty: parseDuty, study: parseStudy }[kind];
@@ -52,20 +51,21 @@ export function parseAny(text: string, options: ParseOptions = {}): AnyDocument 
 }
 
 /** How a trial fits the vessel that it names, or what is wrong with that. */
-function vesselOf(tree: MapNode, trial: Trial, { path = "-", read = nothingToRead }: ParseOptions): Problem[] {
+function vesselOf(trial: Trial, options: ParseOptions): Problem[] {
   const { report, problems } = collector();
-  const node = child(tree, "vessel");
-  if (!node || trial.vessel === undefined) return problems;
-  const vessel = beside(path, trial.vessel);
-  const content = read(vessel);
+  const { read = nothingToRead } = options;
+  if (trial.vessel === undefined) return problems;
+  const content = read(trial.vessel);
   if (content === undefined) {
-    report("file-missing", node.at, { file: trial.vessel });
+    const at = trial.vesselAt ?? trial.at;
+    report("file-missing", at, { file: at.source.text.slice(at.from, at.to).replace(/^(["'])(.*)\1$/, "$2") });
     return problems;
   }
-  const parsed = parseNetwork(decodeText(content), { path: vessel, read });
+  const parsed = parseNetwork(decodeText(content), { ...options, path: trial.vessel });
   if (!parsed.document) return parsed.problems;
   checkTrial(parsed.document, trial, report);
   return problems;
 }
 
-const isChange = (tree: MapNode): boolean => child(tree, "change") !== undefined;
+/** A change alone, without a base to lay it over. */
+const isChange = (tree: MapNode): boolean => child(tree, "change") !== undefined && !child(tree, "based-on");

@@ -5,5 +5,5 @@ import { type Parsed, type ParseOptions, parseDocument } from "./parsed.js";
 /** Reads a chemistry: species, constants, reactions with their rate laws compiled. */
 export function parseChemistry(text: string, options: ParseOptions = {}): Parsed<Chemistry> {
   const path = options.path ?? "chemistry.yaml";
-  return parseDocument("chemistry", text, path, (tree, report) => resolveChemistry(tree, path, report));
+  return parseDocument("chemistry", text, { ...options, path }, (tree, report) => resolveChemistry(tree, path, report));
 }

@@ -10,15 +10,15 @@ import { nothingToRead, type Parsed, type ParseOptions, parseDocument } from "./
 export function parseDuty(text: string, options: ParseOptions = {}): Parsed<Duty> {
   const path = options.path ?? "duty.yaml";
   const read = options.read ?? nothingToRead;
-  return parseDocument("duty", text, path, (tree, report, adopt) => {
+  return parseDocument("duty", text, { ...options, path }, (tree, report, adopt) => {
     const chemistry = (named: string, at: Parameters<typeof report>[1]): Chemistry | undefined => {
-      const full = beside(path, named);
+      const full = beside(at.source.path, named);
       const content = read(full);
       if (content === undefined) {
         report("file-missing", at, { file: named });
         return undefined;
       }
-      const parsed = parseChemistry(decodeText(content), { path: full, read });
+      const parsed = parseChemistry(decodeText(content), { ...options, path: full });
       adopt(parsed.problems);
       return parsed.document;
     };

@@ -31,7 +31,7 @@ export function parseNetwork(text: string, options: ParseOptions = {}): Parsed<N
     adopt(problems);
     return network;
   };
-  return parseDocument("network", text, path, meaning, (tree, report) => {
+  return parseDocument("network", text, { ...options, path }, meaning, (tree, report) => {
     resolveNetwork(tree, path, report);
   });
 }

@@ -1,8 +1,10 @@
 import type { Problem } from "../problems/problem.js";
 import { collector, hasErrors, type Report } from "../problems/report.js";
+import { type Files, usualRoot } from "../read/files.js";
 import { checkShape, documentKind } from "../read/shape.js";
 import type { MapNode } from "../read/tree.js";
 import { readYaml } from "../read/yaml.js";
+import { wholeDocument } from "../resolve/based-on.js";
 import type { DocumentKind } from "../schema/shape.js";
 import type { Span } from "../text/source.js";
 
@@ -13,6 +15,22 @@ export interface ParseOptions {
   /** Where the text comes from, for messages and as the place that relative paths start from. */
   readonly path?: string;
   readonly read?: Read;
+  /**
+   * The folder that parts (`use`) and bases (`based-on`) may not leave. Where it is not given: the current folder, or
+   * that of the document where it lies elsewhere.
+   */
+  readonly root?: string;
+  /** Parts and bases may come from anywhere. */
+  readonly allowOutside?: boolean;
+  /** The path that a path really leads to, links followed: what counts for `root` and for circles. */
+  readonly real?: (path: string) => string;
+  /** Bytes of a file, where they can be told without reading it: too large a document is not read at all. */
+  readonly size?: (path: string) => number | undefined;
+}
+
+/** How a document reaches the files that it names. */
+export function filesOf(path: string, { read = nothingToRead, root, allowOutside, real, size }: ParseOptions): Files {
+  return { read, root: allowOutside ? undefined : (root ?? usualRoot(path)), real, size };
 }
 
 /** A document, or the reasons why there is none. Warnings may stand beside a document. */
@@ -21,7 +39,7 @@ export interface Parsed<T> {
   readonly problems: Problem[];
 }
 
-/** What a tree means; `adopt` takes over the problems of documents that it names. */
+/** What a tree means, variants merged; `adopt` takes over the problems of documents that it names. */
 export type Meaning<T> = (
   tree: MapNode,
   report: Report,
@@ -36,22 +54,32 @@ export type Meaning<T> = (
 export function parseDocument<T>(
   kind: DocumentKind,
   text: string,
-  path: string,
+  options: ParseOptions & { readonly path: string },
   meaning: Meaning<T>,
   glance?: (tree: MapNode, report: Report) => void,
 ): Parsed<T> {
   const { report, problems } = collector();
-  const tree = readYaml({ path, text }, report);
+  const tree = readYaml({ path: options.path, text }, report);
   let document: T | undefined;
   if (tree && checkShape(tree, kind, report)) {
-    document = meaning(tree, report, (more) => problems.push(...more));
+    const whole = wholeDocument(tree, kind, filesOf(options.path, options), report);
+    document = whole && meaning(whole, report, (more) => problems.push(...more));
   } else if (tree && glance && documentKind(tree) === kind) {
     const more = collector();
     glance(tree, more.report);
     // What stands at a place that is already found fault with is an echo.
     problems.push(...more.problems.filter((p) => !problems.some((q) => overlap(p.at, q.at))));
   }
-  return { document: hasErrors(problems) ? undefined : document, problems: inOrder(problems) };
+  return { document: hasErrors(problems) ? undefined : document, problems: inOrder(distinct(problems)) };
+}
+
+/** What several rivals or parts share is told once. */
+function distinct(problems: readonly Problem[]): Problem[] {
+  const seen = new Set<string>();
+  return problems.filter(({ code, message, at }) => {
+    const key = `${at.source.path}:${at.from}:${at.to}:${code}:${message}`;
+    return !seen.has(key) && seen.add(key);
+  });
 }
 
 const overlap = (a: Span, b: Span): boolean => a.from < b.to && b.from < a.to;

@@ -16,13 +16,13 @@ import { parseTrial } from "./trial.js";
 export function parseStudy(text: string, options: ParseOptions = {}): Parsed<Study> {
   const path = options.path ?? "study.yaml";
   const read = options.read ?? nothingToRead;
-  return parseDocument("study", text, path, (tree, report, adopt) => {
+  return parseDocument("study", text, { ...options, path }, (tree, report, adopt) => {
     const open = <T>(
       key: string,
       parse: (text: string, options: ParseOptions) => Parsed<T>,
     ): (T & { file: string })[] =>
-      filesUnder(tree, key, path, read, report).flatMap(({ file, content }) => {
-        const parsed = parse(content, { path: file, read });
+      filesUnder(tree, key, read, report).flatMap(({ file, content }) => {
+        const parsed = parse(content, { ...options, path: file });
         adopt(parsed.problems);
         return parsed.document ? [{ ...parsed.document, file }] : [];
       });
@@ -60,10 +60,10 @@ interface NamedFile {
   readonly content: string;
 }
 
-function filesUnder(tree: MapNode, key: string, path: string, read: Read, report: Report): NamedFile[] {
+function filesUnder(tree: MapNode, key: string, read: Read, report: Report): NamedFile[] {
   const named = itemsOf(child(tree, key)).filter((item): item is ScalarNode => item.type === "scalar");
   return named.flatMap((item) => {
-    const file = beside(path, item.text);
+    const file = beside(item.at.source.path, item.text);
     const content = read(file);
     if (content === undefined) report("file-missing", item.at, { file: item.text });
     return content === undefined ? [] : [{ file, content: decodeText(content) }];
@@ -80,6 +80,11 @@ export function parseChange(text: string, options: ParseOptions = {}): Parsed<Ch
   const title = child(tree, "network") ?? tree;
   if (change?.type !== "map") {
     report("no-change", title.at, { title: textOf(tree, "network") ?? "" });
+    return { document: undefined, problems };
+  }
+  const base = tree.entries.find(({ key }) => key.text === "based-on");
+  if (base) {
+    report("change-with-base", base.key.at, { title: textOf(tree, "network") ?? "" });
     return { document: undefined, problems };
   }
   const document = { title: textOf(tree, "network") ?? "", path, notes: textOf(tree, "notes"), at: title.at, change };

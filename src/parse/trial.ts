@@ -6,7 +6,7 @@ import { nothingToRead, type Parsed, type ParseOptions, parseDocument } from "./
 /** Reads a trial and the tables that it names. Places are checked against a vessel later (`checkTrial`). */
 export function parseTrial(text: string, options: ParseOptions = {}): Parsed<Trial> {
   const path = options.path ?? "trial.yaml";
-  return parseDocument("trial", text, path, (tree, report) => {
+  return parseDocument("trial", text, { ...options, path }, (tree, report) => {
     const trial = resolveTrial(tree, path, { read: options.read ?? nothingToRead }, report);
     if (trial) checkTrial(undefined, trial, report);
     return trial;

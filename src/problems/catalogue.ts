@@ -3,6 +3,7 @@ import { dataEntries } from "./catalogue/data.js";
 import { flowEntries } from "./catalogue/flows.js";
 import { libraryEntries } from "./catalogue/library.js";
 import { nameEntries } from "./catalogue/names.js";
+import { reuseEntries } from "./catalogue/reuse.js";
 import { runEntries } from "./catalogue/runs.js";
 import { shapeEntries } from "./catalogue/shape.js";
 import { studyEntries } from "./catalogue/study.js";
@@ -16,6 +17,7 @@ export const catalogueGroups = {
   "Values, units, expressions": valueEntries,
   Names: nameEntries,
   "Streams, flows, volumes": flowEntries,
+  "Parts and variants": reuseEntries,
   "Trials and their tables": dataEntries,
   "Chemistries and duties": chemistryEntries,
   "Fits: before they run, and what to know of their results": runEntries,
@@ -30,6 +32,7 @@ export const catalogue = {
   ...valueEntries,
   ...nameEntries,
   ...flowEntries,
+  ...reuseEntries,
   ...dataEntries,
   ...chemistryEntries,
   ...runEntries,

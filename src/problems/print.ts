@@ -1,11 +1,12 @@
-import { placeOf, type Span } from "../text/source.js";
+import { placeOf, type Span, usesOf } from "../text/source.js";
 import { excerpt, harmless } from "./excerpt.js";
 import { inFileOrder } from "./order.js";
 import type { Problem } from "./problem.js";
 
 /**
  * Problems for people, in file order, a blank line between two:
- * place, code and message; the line with marks under the fault; the earlier place where two disagree; the fix.
+ * place, code and message; the line with marks under the fault; the files that led there, where it is a part or a base;
+ * the earlier place where two disagree; the fix.
  */
 export function printProblems(problems: readonly Problem[], options: { colour?: boolean } = {}): string {
   const paint = options.colour ? inColour : plain;
@@ -18,10 +19,14 @@ function printProblem({ code, severity, message, fix, at, also }: Problem, paint
   const word = severity === "warning" ? `warning ${code}` : code;
   const kind = severity === "warning" ? paint.warning : paint.error;
   const lines = [`${paint.place(placeText(at))} ${kind(word)}: ${harmless(message)}`, ...marked(at, kind)];
+  for (const use of usesOf(at.source)) lines.push(`  ${chainWord[use.as]} ${paint.place(placeText(use.at))}`);
   if (also) lines.push(`${paint.place(placeText(also.at))} ${harmless(also.says)}`, ...marked(also.at, kind));
   lines.push(`  ${paint.fix("fix:")} ${harmless(fix)}`);
   return lines.join("\n");
 }
+
+/** What the file above is to the place that names it. */
+const chainWord = { part: "used by", base: "base of" } as const;
 
 function placeText(at: Span): string {
   const { line, column } = placeOf(at);

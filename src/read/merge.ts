@@ -1,22 +1,27 @@
-import { child, type Entry, type MapNode, type Tree, textOf } from "./tree.js";
+import { type Entry, type MapNode, type ScalarNode, type Tree, textOf } from "./tree.js";
+
+/** Told of a `null` that would remove what is not there, with the names that are. */
+export type NothingThere = (key: ScalarNode, known: readonly string[]) => void;
 
 /**
  * A document with a change laid over it; each node keeps the place where it was written.
  * Maps merge key by key; `null` removes; lists and `to` are replaced whole; a map whose `kind` changes is replaced whole.
  */
-export function mergeTree(base: MapNode, change: Tree): MapNode {
+export function mergeTree(base: MapNode, change: Tree, nothingThere: NothingThere = () => {}): MapNode {
   if (change.type !== "map") return base;
-  const kept = base.entries.flatMap((entry) => mergedEntry(entry, change));
-  const added = change.entries.filter((e) => !child(base, e.key.text) && !isNull(e.value)).map(withoutNulls);
-  return { ...base, entries: [...kept, ...added] };
+  const kept = base.entries.flatMap((entry) => mergedEntry(entry, change, nothingThere));
+  const there = new Set(base.entries.map((e) => e.key.text));
+  const others = change.entries.filter((e) => !there.has(e.key.text));
+  for (const { key, value } of others) if (isNull(value)) nothingThere(key, [...there]);
+  return { ...base, entries: [...kept, ...others.filter((e) => !isNull(e.value)).map(withoutNulls)] };
 }
 
-function mergedEntry(entry: Entry, change: MapNode): Entry[] {
+function mergedEntry(entry: Entry, change: MapNode, nothingThere: NothingThere): Entry[] {
   const other = change.entries.find((e) => e.key.text === entry.key.text);
   if (!other) return [entry];
   if (isNull(other.value)) return [];
   if (entry.value.type !== "map" || other.value.type !== "map" || replaces(entry, other)) return [withoutNulls(other)];
-  return [{ key: entry.key, value: mergeTree(entry.value, other.value) }];
+  return [{ key: entry.key, value: mergeTree(entry.value, other.value, nothingThere) }];
 }
 
 function replaces(base: Entry, change: Entry): boolean {

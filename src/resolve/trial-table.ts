@@ -23,20 +23,13 @@ export interface ResolvedTable extends ReadSeries {
 
 /**
  * Reads the table that `file`, `time`, `value` and `csv` of a reading or a measured inlet name.
- * @param path of the document, that `file` is relative to
  * @returns undefined where something is wrong; reported
  */
-export function resolveTable(
-  node: MapNode,
-  path: string,
-  anyWord: boolean,
-  files: Files,
-  report: Report,
-): ResolvedTable | undefined {
+export function resolveTable(node: MapNode, anyWord: boolean, files: Files, report: Report): ResolvedTable | undefined {
   const fileNode = child(node, "file");
   const file = textOf(node, "file");
   if (!fileNode || file === undefined) return undefined;
-  const full = beside(path, file);
+  const full = beside(fileNode.at.source.path, file);
   const content = files.read(full);
   const time = column(child(node, "time"), fileNode);
   const value = column(child(node, "value"), fileNode);
@@ -68,7 +61,8 @@ const columnExample = { time: "{column: t, unit: min}", value: "{column: c, unit
 
 const minute: Unit = { name: "min", factor: 60, offset: 0, dimension: dimensions.time };
 
-function column(node: Tree | undefined, file: Tree): { column: string | number; at: Tree["at"] } | undefined {
+/** The column that a table's key names, by header or by position. */
+export function column(node: Tree | undefined, file: Tree): { column: string | number; at: Tree["at"] } | undefined {
   const name = child(node, "column");
   if (name?.type !== "scalar") return undefined;
   const isPosition = name.plain && /^\d+$/.test(name.text);
@@ -96,7 +90,8 @@ function checkUnits(node: MapNode, time: Unit | undefined, value: Unit | undefin
   return false;
 }
 
-function csvOptions(node: Tree | undefined): CsvOptions {
+/** What `csv:` says of how a table is written. */
+export function csvOptions(node: Tree | undefined): CsvOptions {
   const separator = textOf(node, "separator");
   const decimal = textOf(node, "decimal");
   const header = textOf(node, "header");

@@ -1,6 +1,7 @@
 import type { Trial } from "../model/trial.js";
 import type { Value } from "../model/value.js";
 import type { Report } from "../problems/report.js";
+import { beside } from "../read/paths.js";
 import { child, entriesOf, itemsOf, type MapNode, type Tree, textOf } from "../read/tree.js";
 import { type Dimension, dimensions } from "../units/dimension.js";
 import type { Unit } from "../units/unit.js";
@@ -16,7 +17,7 @@ export type { Files } from "./trial-table.js";
 /**
  * A trial document with its tables read, all on one clock, in SI.
  * @param tree  a document that has passed the shape check
- * @param path  of the document; the files it names are relative to it
+ * @param path  of the document
  * @param scope names that `flows` and `with` may use: the network's, where one is known
  * @returns undefined where something is wrong that leaves no trial; reported, as is everything else
  */
@@ -32,7 +33,7 @@ export function resolveTrial(
   const free = readingNodes.length > 0 && readingNodes.every((node) => textOf(node, "scale") === "free");
   const table = (node: MapNode | undefined): ResolvedTable | undefined => {
     const anyWord = child(node, "calibration") !== undefined || textOf(node, "scale") === "free" || free;
-    return node && child(node, "file") ? resolveTable(node, path, anyWord, files, report) : undefined;
+    return node && child(node, "file") ? resolveTable(node, anyWord, files, report) : undefined;
   };
   const readTables = readingNodes.map(table);
   const inletTables = injectionNodes.map((node) => table(signalNode(node)));
@@ -61,7 +62,8 @@ export function resolveTrial(
     title: textOf(tree, "trial") ?? "",
     at: title?.at ?? tree.at,
     path,
-    vessel: textOf(tree, "vessel"),
+    vessel: vesselPath(child(tree, "vessel")),
+    vesselAt: child(tree, "vessel")?.at,
     flows,
     with: values(child(tree, "with"), "any", scope, report),
     injections: injections.filter((part) => part !== undefined),
@@ -69,6 +71,10 @@ export function resolveTrial(
     ...(clock.format ? { clock: clock.format } : {}),
   };
 }
+
+/** Relative to the file in which it is written, which may be the base of a variant. */
+const vesselPath = (node: Tree | undefined): string | undefined =>
+  node?.type === "scalar" && !node.empty ? beside(node.at.source.path, node.text) : undefined;
 
 const mapsOf = (node: Tree | undefined): MapNode[] =>
   itemsOf(node).flatMap((item) => (item.type === "map" ? [item] : []));

@@ -2,6 +2,14 @@
 export interface Source {
   readonly path: string;
   readonly text: string;
+  /** Why it was read, where another document asked for it: as a part or as the base of a variant. */
+  readonly usedBy?: Use;
+}
+
+/** The place that names a file, and what for. */
+export interface Use {
+  readonly as: "part" | "base";
+  readonly at: Span;
 }
 
 /** A stretch of a source: UTF-16 offsets, `to` exclusive. */
@@ -24,6 +32,13 @@ export function placeOf(span: Span): Place {
   const [line, column] = lineAndColumn(span.source.text, span.from);
   const [endLine, endColumn] = lineAndColumn(span.source.text, Math.max(span.from, span.to));
   return { line, column, endLine, endColumn };
+}
+
+/** The places that led to a source, the nearest first. */
+export function usesOf(source: Source): Use[] {
+  const uses: Use[] = [];
+  for (let use = source.usedBy; use; use = use.at.source.usedBy) uses.push(use);
+  return uses;
 }
 
 /** The text of a 1-based line, without its line break. */

@@ -1,4 +1,4 @@
-import { placeOf, type Span } from "../../text/source.js";
+import { placeOf, type Span, usesOf } from "../../text/source.js";
 import type { Problem } from "../problem.js";
 
 /** A SARIF log: OASIS, Static Analysis Results Interchange Format (SARIF) Version 2.1.0, 2020. What code-scanning services read. */
@@ -59,12 +59,23 @@ export function sarifLog(problems: readonly Problem[], version: string): SarifLo
           level: severity,
           message: { text: `${message}\nfix: ${fix}` },
           locations: [location(at)],
-          ...(also ? { relatedLocations: [{ ...location(also.at), message: { text: also.says } }] } : {}),
+          ...related([
+            ...usesOf(at.source).map((use) => ({
+              at: use.at,
+              says: use.as === "part" ? "used here" : "the base of this",
+            })),
+            ...(also ? [also] : []),
+          ]),
         })),
       },
     ],
   };
 }
+
+const related = (places: readonly { at: Span; says: string }[]): Pick<SarifResult, "relatedLocations"> =>
+  places.length === 0
+    ? {}
+    : { relatedLocations: places.map(({ at, says }) => ({ ...location(at), message: { text: says } })) };
 
 function location(at: Span): SarifLocation {
   const { line, column, endLine, endColumn } = placeOf(at);

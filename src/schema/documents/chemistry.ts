@@ -76,7 +76,7 @@ const reaction: Shape = record(
 );
 
 /** Species, constants and reactions. */
-export const chemistryShape: Shape = record({
+export const chemistryShape = record({
   ...heading("chemistry", "What reacts.", "Consecutive hydrolysis"),
   species,
   constants,

@@ -4,7 +4,7 @@ import { either, heading, later, list, named, quantity, record, text } from "./c
 const upset: Shape = { is: "later", sort: "map", says: "a feed value that changes in time" };
 
 /** One operating point. */
-export const dutyShape: Shape = record({
+export const dutyShape = record({
   ...heading("duty", "The operating point.", "Normal production, 15 % up"),
   chemistry: {
     shape: text,

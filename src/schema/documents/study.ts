@@ -1,8 +1,7 @@
-import type { Shape } from "../shape.js";
 import { heading, list, record, text, whole } from "./common.js";
 
 /** The whole job. */
-export const studyShape: Shape = record({
+export const studyShape = record({
   ...heading("study", "The question that the study answers.", "Why does V-3 convert less than designed?"),
   rivals: {
     shape: list(text),

@@ -199,7 +199,7 @@ const injection: Shape = record(
 );
 
 /** One tracer test as declared. */
-export const trialShape: Shape = record({
+export const trialShape = record({
   ...heading("trial", "What was tested, and under which conditions.", "Salt pulse, normal flow"),
   vessel: {
     shape: text,
