@@ -1,4 +1,4 @@
-import { mkdirSync, readFileSync, readSync, renameSync, rmSync, statSync, writeFileSync } from "node:fs";
+import { mkdirSync, readdirSync, readFileSync, readSync, renameSync, rmSync, statSync, writeFileSync } from "node:fs";
 import { dirname, resolve } from "node:path";
 import { UsageError } from "./usage.js";
 
@@ -11,6 +11,8 @@ export interface Io {
   read(path: string): Uint8Array | string | undefined;
   /** True where something is at the path, readable or not. */
   exists(path: string): boolean;
+  /** Files and folders in a folder; undefined where it cannot be listed. A link to a folder is no folder. */
+  list(path: string): readonly { readonly name: string; readonly is: "file" | "folder" | "other" }[] | undefined;
   /** Writes a file whole or not at all; makes its folder. Throws UsageError where it cannot. */
   write(path: string, content: string): void;
   out(text: string): void;
@@ -23,7 +25,7 @@ export interface Io {
 }
 
 /** Files of this machine, relative to `cwd`. */
-export function files(cwd: string): Pick<Io, "read" | "exists" | "write"> {
+export function files(cwd: string): Pick<Io, "read" | "exists" | "list" | "write"> {
   return {
     read(path) {
       try {
@@ -34,6 +36,16 @@ export function files(cwd: string): Pick<Io, "read" | "exists" | "write"> {
     },
     exists(path) {
       return statSync(resolve(cwd, path), { throwIfNoEntry: false }) !== undefined;
+    },
+    list(path) {
+      try {
+        return readdirSync(resolve(cwd, path), { withFileTypes: true }).map((entry) => ({
+          name: entry.name,
+          is: entry.isDirectory() ? "folder" : isFile(resolve(cwd, path, entry.name)) ? "file" : "other",
+        }));
+      } catch {
+        return undefined;
+      }
     },
     write(path, content) {
       const target = resolve(cwd, path);
@@ -49,6 +61,9 @@ export function files(cwd: string): Pick<Io, "read" | "exists" | "write"> {
     },
   };
 }
+
+/** A link counts as what it leads to. */
+const isFile = (path: string): boolean => statSync(path, { throwIfNoEntry: false })?.isFile() === true;
 
 /** Takes a draft away, where there is one. */
 function discard(draft: string): void {

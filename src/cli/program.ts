@@ -1,25 +1,18 @@
 import { Command, InvalidArgumentError, Option } from "commander";
-import type { Inputs } from "./inputs.js";
-import type { Io } from "./io.js";
-import { type Outcome, UsageError } from "./outcome.js";
+import { command } from "./command.js";
+import { addLibraryCommands, libraryCommandNames } from "./library-commands.js";
+import { UsageError } from "./outcome.js";
+import type { Stage } from "./stage.js";
 import { version } from "./version.js";
 
-/** What the command line needs of its surroundings. */
-export interface Stage {
-  readonly io: Io;
-  readonly inputs: Inputs;
-  /** Runs the work of a command under its name. */
-  perform(name: string, work: () => Outcome | Promise<Outcome>): Promise<void>;
-  /** Takes help texts and the version. */
-  write(text: string): void;
-  readonly width: number;
-}
-
 /** Commands of the language's contract that this version does not have. */
-const laterCommands = "equations, sweep, plan, verify, tidy, diff, watch, language-server".split(", ");
+const laterCommands = "sweep, plan, watch, language-server".split(", ");
 
 /** The commands that this version has. */
-export const commandNames: ReadonlySet<string> = new Set(["check", "draw", "simulate", "moments", "fit", "study"]);
+export const commandNames: ReadonlySet<string> = new Set([
+  ...["check", "draw", "simulate", "moments", "fit", "study"],
+  ...libraryCommandNames,
+]);
 
 /** Every command with its arguments and options. The work itself is loaded when it is asked for. */
 export function program(stage: Stage): Command {
@@ -43,6 +36,7 @@ export function program(stage: Stage): Command {
   addMoments(root, stage);
   addFit(root, stage);
   addStudy(root, stage);
+  addLibraryCommands(root, stage);
   for (const name of laterCommands) addLater(root, name);
   root.addHelpText(
     "after",
@@ -139,15 +133,6 @@ function addStudy(root: Command, { perform, inputs, io }: Stage): void {
     .action((file: string, options) =>
       perform("study", async () => (await import("./study.js")).study(file, options, { inputs, io })),
     );
-}
-
-function command(root: Command, usage: string, says: string, examples: readonly string[]): Command {
-  const lines = examples.map((e) => `  backmix ${e}`).join("\n");
-  return root
-    .command(usage)
-    .description(says)
-    .option("--json", "print one JSON document")
-    .addHelpText("after", `\nExample${examples.length > 1 ? "s" : ""}:\n${lines}`);
 }
 
 function addLater(root: Command, name: string): void {

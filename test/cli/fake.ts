@@ -1,4 +1,4 @@
-import { readFileSync } from "node:fs";
+import { readdirSync, readFileSync } from "node:fs";
 import type { ExitStatus, Io } from "../../src/cli/io.js";
 import { run } from "../../src/cli/run.js";
 
@@ -38,6 +38,7 @@ export async function backmix(
   const status = await run(args, {
     read,
     exists: (path) => read(path) !== undefined,
+    list: (path) => listed(path, files),
     write: (path, content) => void written.set(path, content),
     out: (text) => {
       out += text;
@@ -50,6 +51,27 @@ export async function backmix(
     cancelled: cancelled ?? (() => false),
   });
   return { status, out, err, written };
+}
+
+/** Files of the surroundings by their paths; else a folder of the repository. */
+function listed(path: string, files: NonNullable<Surroundings["files"]>): ReturnType<Io["list"]> {
+  const inside = Object.keys(files).flatMap((f) => (f.startsWith(`${path}/`) ? [f.slice(path.length + 1)] : []));
+  if (inside.length > 0) {
+    const folders = new Set(inside.flatMap((f) => (f.includes("/") ? [f.slice(0, f.indexOf("/"))] : [])));
+    const own = inside.filter((f) => !f.includes("/"));
+    return [
+      ...own.map((name) => ({ name, is: "file" as const })),
+      ...[...folders].map((name) => ({ name, is: "folder" as const })),
+    ];
+  }
+  try {
+    return readdirSync(new URL(path, root), { withFileTypes: true }).map((e) => ({
+      name: e.name,
+      is: e.isDirectory() ? "folder" : "file",
+    }));
+  } catch {
+    return undefined;
+  }
 }
 
 /** The same with `--json`: one document, nothing else on standard output. */

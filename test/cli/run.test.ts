@@ -35,9 +35,10 @@ describe("wrong usage ends with 2, a hint and no stack", () => {
     ["resuming of later", ["fit", "tank.yaml", "--trial", "pulse.yaml", "--resume", "x.json"]],
     ["an unknown parameter", ["fit", "tank.yaml", "--trial", "pulse.yaml", "--free", "volume"]],
     ["a picture of later", ["draw", "tank.yaml", "-o", "tank.png"]],
-    ...["equations", "sweep", "plan", "verify", "tidy", "diff", "watch", "language-server"].map(
-      (command): [string, string[]] => [`${command}, of later`, [command, "x.yaml", "--some", "thing"]],
-    ),
+    ...["sweep", "plan", "watch", "language-server"].map((command): [string, string[]] => [
+      `${command}, of later`,
+      [command, "x.yaml", "--some", "thing"],
+    ]),
   ];
   test.each(wrong)("%s", async (_, args) => {
     const { status, out, err, written } = await backmix(args, { files });
@@ -152,7 +153,7 @@ test("help and version are documents too when asked", async () => {
 });
 
 describe("every example in the help texts runs", async () => {
-  const commands = ["check", "draw", "simulate", "moments", "fit"];
+  const commands = ["check", "draw", "simulate", "moments", "fit", "tidy", "diff", "verify", "equations"];
   const helps = await Promise.all(commands.map((c) => backmix([c, "--help"])));
   const examples = helps.flatMap(({ out }) => [...out.matchAll(/^ {2}backmix (.+)$/gm)].map((m) => m[1]));
   test("there is one for every command", () => {

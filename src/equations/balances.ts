@@ -1,0 +1,122 @@
+import { Part, type Plant, type PlantNode } from "../compile/plant.js";
+import { type Link, lineOf, linksOf } from "./links.js";
+import { concentration, spaceTime, texName, texQuantity, throughFlow, volume } from "./tex.js";
+
+/** One term of a balance, with its sign and its place in the file. */
+export interface Term {
+  readonly tex: string;
+  readonly says: string;
+  readonly line: number;
+}
+
+/** The equation of one node: a state that changes in time, a delay, a meeting of streams, or a body with a curve of its own. */
+export interface Balance {
+  readonly name: string;
+  readonly is: "state" | "delay" | "joint" | "body";
+  /** What stands left of the equals sign, and all of it. */
+  readonly left: string;
+  readonly tex: string;
+  readonly terms: readonly Term[];
+  /** The line of the compartment, feed or outlet. */
+  readonly line: number;
+}
+
+/**
+ * The compiled balances of a plant for one tracer or species without reaction: one per primitive node but the feeds,
+ * whose concentrations are given, and what no flow reaches.
+ */
+export function balancesOf(plant: Plant): Balance[] {
+  const links = linksOf(plant).filter((l) => l.flow > 0);
+  const [arriving, leaving] = [grouped(links, (l) => l.to), grouped(links, (l) => l.from)];
+  const feeds = new Set(plant.feeds.map((f) => f.node));
+  return plant.nodes.flatMap((node, i): Balance[] => {
+    if (feeds.has(i) || !(node.inflow > 0)) return [];
+    const write = writers[node.part] ?? body;
+    return [
+      write({ plant, node, line: lineAt(plant, node.name), into: arriving.get(i) ?? [], outOf: leaving.get(i) ?? [] }),
+    ];
+  });
+}
+
+/** A node with the links that end and begin at it. */
+interface Surrounded {
+  readonly plant: Plant;
+  readonly node: PlantNode;
+  readonly line: number;
+  readonly into: readonly Link[];
+  readonly outOf: readonly Link[];
+}
+
+const writers: Readonly<Record<number, (at: Surrounded) => Balance>> = {
+  [Part.Cell]: state,
+  [Part.Delay]: delay,
+  [Part.Joint]: joint,
+};
+
+/** V dc/dt = what comes in - what goes out. */
+function state({ plant, node: { name }, line, into, outOf }: Surrounded): Balance {
+  const left = `${volume(name)} \\frac{d${concentration(name)}}{dt}`;
+  const terms = [...into.map((l) => term("+", l, plant)), ...outOf.map((l) => term("-", l, plant))];
+  return { name, is: "state", left, tex: `${left} = ${sumOf(terms)}`, terms, line };
+}
+
+/** What leaves a tube is what entered it one space time ago. */
+function delay({ plant, node: { name, volume: held, inflow }, line, into }: Surrounded): Balance {
+  const tau = spaceTime(name);
+  const left = `${concentration(name)}(t)`;
+  const late = mixture(into, plant, (c) => `${c}\\!\\left(t - ${tau}\\right)`);
+  const value = texQuantity(held / inflow, plant.network.units.time);
+  const tex = `${left} = ${late},\\qquad ${tau} = ${volume(name)} / ${throughFlow(name)} = ${value}`;
+  return { name, is: "delay", left, tex, terms: into.map((l) => term("+", l, plant)), line };
+}
+
+function joint({ plant, node: { name }, line, into }: Surrounded): Balance {
+  const left = concentration(name);
+  const tex = `${left} = ${mixture(into, plant, (c) => c)}`;
+  return { name, is: "joint", left, tex, terms: into.map((l) => term("+", l, plant)), line };
+}
+
+/** A body that is known by its transfer function, in Laplace space. */
+function body({ plant, node: { name }, line, into }: Surrounded): Balance {
+  const hat = (c: string): string => `\\hat ${c}(s)`;
+  const left = hat(concentration(name));
+  const tex = `${left} = G_{${texName(name)}}(s)\\; ${mixture(into, plant, hat)}`;
+  return { name, is: "body", left, tex, terms: into.map((l) => term("+", l, plant)), line };
+}
+
+/** The flow-weighted mean of what enters; of one stream what that brings. */
+function mixture(into: readonly Link[], { nodes }: Plant, form: (c: string) => string): string {
+  const brought = (l: Link): string => form(concentration(nodes[l.from].name));
+  if (into.length === 1) return brought(into[0]);
+  const sum = into.map((l) => `${l.symbol}\\, ${brought(l)}`).join(" + ");
+  return `\\frac{${sum}}{${into.map((l) => l.symbol).join(" + ")}}`;
+}
+
+const term = (sign: "+" | "-", { symbol, from, says, line }: Link, { nodes }: Plant): Term => ({
+  tex: `${sign} ${symbol}\\, ${concentration(nodes[from].name)}`,
+  says: `${sign === "+" ? "in" : "out"}: ${says}`,
+  line,
+});
+
+const sumOf = (terms: readonly Term[]): string =>
+  terms
+    .map((t) => t.tex)
+    .join(" ")
+    .replace(/^\+ /, "");
+
+function grouped(links: readonly Link[], by: (link: Link) => number): Map<number, Link[]> {
+  const groups = new Map<number, Link[]>();
+  for (const link of links) {
+    const group = groups.get(by(link));
+    if (group) group.push(link);
+    else groups.set(by(link), [link]);
+  }
+  return groups;
+}
+
+function lineAt({ network }: Plant, node: string): number {
+  const places = [...network.feeds, ...network.compartments, ...network.outlets];
+  return lineOf(
+    (places.find((p) => node === p.name) ?? places.find((p) => node.startsWith(`${p.name}.`)) ?? network).at,
+  );
+}

@@ -1,0 +1,75 @@
+import type { Plant } from "../compile/plant.js";
+import type { Exchange, Stream } from "../model/network.js";
+import { placeOf, type Span } from "../text/source.js";
+import { streamFlow } from "./tex.js";
+
+/** A flow between two primitive nodes, and where the file says so. */
+export interface Link {
+  readonly from: number;
+  readonly to: number;
+  /** m3/s. */
+  readonly flow: number;
+  /** Its symbol, in math. */
+  readonly symbol: string;
+  /** In words: "stream feed to bulk". */
+  readonly says: string;
+  /** 1-based line of the file. */
+  readonly line: number;
+}
+
+/** A stream or an exchange as the file has it, with its solved flow. */
+export interface WrittenStream {
+  readonly from: string;
+  readonly to: string;
+  /** m3/s. */
+  readonly flow: number;
+  readonly line: number;
+  readonly is: { readonly stream: Stream } | { readonly exchange: Exchange };
+}
+
+export const lineOf = (at: Span): number => placeOf({ ...at, to: at.from }).line;
+
+/** Streams, then exchanges, in file order. */
+export function writtenStreams({ network, streams }: Plant): WrittenStream[] {
+  const places = [...network.feeds, ...network.compartments];
+  const written = [
+    ...places.flatMap((p) => p.streams.map((stream) => ({ line: lineOf(stream.at), is: { stream } }))),
+    ...network.compartments.flatMap((c) =>
+      c.exchanges.map((exchange) => ({ line: lineOf(exchange.at), is: { exchange } })),
+    ),
+  ];
+  return streams.map(({ from, to, flow }, i) => ({ from, to, flow, ...written[i] }));
+}
+
+/** Every link of a plant with its symbol and its line; what lies inside a compartment has the line of that. */
+export function linksOf(plant: Plant): Link[] {
+  const waiting = new Map<string, Link[]>();
+  const ends = (from: number, to: number, flow: number): string => `${from} ${to} ${flow}`;
+  for (const l of writtenStreams(plant).flatMap((s): Link[] => {
+    const bothWays = "exchange" in s.is;
+    const symbol = streamFlow(s.from, s.to, bothWays);
+    const link = (a: string, b: string): Link => ({
+      from: plant.exit.get(a) ?? -1,
+      to: plant.entry.get(b) ?? -1,
+      flow: s.flow,
+      symbol,
+      says: bothWays ? `exchange of ${s.from} and ${s.to}` : `stream ${a} to ${b}`,
+      line: s.line,
+    });
+    return bothWays ? [link(s.from, s.to), link(s.to, s.from)] : [link(s.from, s.to)];
+  })) {
+    const key = ends(l.from, l.to, l.flow);
+    waiting.set(key, [...(waiting.get(key) ?? []), l]);
+  }
+  return Array.from(plant.flow, (flow, k) => {
+    const [from, to] = [plant.from[k], plant.to[k]];
+    return waiting.get(ends(from, to, flow))?.shift() ?? inner(plant, from, to, flow);
+  });
+}
+
+function inner({ nodes, network }: Plant, from: number, to: number, flow: number): Link {
+  const [a, b] = [nodes[from].name, nodes[to].name];
+  const body = network.compartments.find((c) => b === c.name || b.startsWith(`${c.name}.`));
+  const line = lineOf((body ?? network).at);
+  return { from, to, flow, symbol: streamFlow(a, b), says: `inside ${body?.name ?? network.title}`, line };
+}

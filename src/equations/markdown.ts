@@ -1,0 +1,170 @@
+import type { Plant } from "../compile/plant.js";
+import type { Value } from "../model/value.js";
+import { dimensions } from "../units/dimension.js";
+import { formatNumber, formatQuantity } from "../units/format.js";
+import { differenceInUnit, inUnit } from "../units/unit.js";
+import { type Balance, balancesOf } from "./balances.js";
+import { lineOf, linksOf, type WrittenStream, writtenStreams } from "./links.js";
+import {
+  concentration,
+  spaceTime,
+  streamFlow,
+  texExpression,
+  texName,
+  texQuantity,
+  texValueName,
+  throughFlow,
+  volume,
+} from "./tex.js";
+
+/** The compiled balances of a plant as a Markdown page with math, for a reviewer: symbols, flows, volumes, one equation per state. */
+export function equationsMarkdown(plant: Plant, balances: readonly Balance[] = balancesOf(plant)): string {
+  const { network } = plant;
+  const of = (is: Balance["is"]): Balance[] => balances.filter((b) => b.is === is);
+  return [
+    `# ${inText(network.title)}`,
+    `The balances of \`${network.path}\` as compiled, for one substance that neither reacts nor sticks. \`L12\` is line 12 of that file. $c$ is the concentration at the outflow of a place, $V$ a volume, $Q$ a flow (of a place: all that its streams bring, exchange left out); those of the feeds are given.`,
+    ...section("Names", namesTable(plant)),
+    ...section("Flows", flowsTable(plant)),
+    ...section("Bodies", bodiesTable(plant)),
+    ...section(`Balances of the ${counted(of("state").length, "state")}`, ...of("state").map(equation)),
+    ...section("Plug flow: delays", ...of("delay").map(equation)),
+    ...section("Bodies with a residence-time curve of their own", ...of("body").map(equation)),
+    ...section("Meeting streams and outlets", ...of("joint").map(equation)),
+    ...section("Total balances", totals(plant, balances)),
+  ].join("\n\n");
+}
+
+const section = (title: string, ...parts: readonly string[]): string[] =>
+  parts.some((p) => p !== "") ? [`## ${title}`, ...parts] : [];
+
+const counted = (n: number, word: string): string => `${n} ${word}${n === 1 ? "" : "s"}`;
+
+/** Text of the author's own, so that Markdown leaves it alone. */
+const inText = (text: string): string => text.replace(/[\r\n]+/g, " ").replace(/([\\`*_[\]<>|$#])/g, "\\$1");
+
+const table = (titles: readonly string[], rows: readonly (readonly string[])[]): string =>
+  rows.length === 0
+    ? ""
+    : [titles, titles.map(() => "---"), ...rows].map((cells) => `| ${cells.join(" | ")} |`).join("\n");
+
+const math = (tex: string): string => `$${tex}$`;
+const at = (line: number): string => `L${line}`;
+
+function namesTable({ network, env }: Plant): string {
+  const rows = network.names
+    .filter((n) => n.role !== "feed-flow")
+    .map((n) => {
+      const unit = n.value.unit ?? network.units.unitFor(n.value.dimension);
+      const sd = n.value.sd?.(env);
+      const spread = sd === undefined ? "" : ` ± ${formatNumber(differenceInUnit(sd, unit))}`;
+      const value = `${formatNumber(inUnit(env[n.slot], unit), 6)}${spread} ${unit.name}`.trim();
+      return [math(texValueName(n.name)), value, n.role, written(n.value), inText(n.about ?? ""), at(lineOf(n.at))];
+    });
+  return table(["symbol", "value", "what", "as written", "about", "line"], rows);
+}
+
+/** The rule that an expression makes; nothing where a number says it all. */
+const written = ({ expression }: Value): string =>
+  expression.type === "number" ? "" : math(texExpression(expression));
+
+function flowsTable(plant: Plant): string {
+  const { network, feeds, outlets } = plant;
+  const unit = network.units.unitFor(dimensions.flow);
+  const streams = writtenStreams(plant);
+  const inside = linksOf(plant).filter((l) => l.says.startsWith("inside "));
+  const say = (q: number): string => formatQuantity(q, unit, 6);
+  const arriving = (place: string): string =>
+    streams
+      .filter((s) => "stream" in s.is && s.to === place)
+      .map((s) => streamFlow(s.from, s.to))
+      .join(" + ");
+  const through = (place: string): number =>
+    streams.reduce((sum, s) => sum + ("stream" in s.is && s.to === place ? s.flow : 0), 0);
+  return table(
+    ["flow", "value", "line"],
+    [
+      ...network.feeds.map((f, i) => [
+        math(`${throughFlow(f.name)} = ${texExpression(f.flow.expression)}`),
+        say(feeds[i].flow),
+        at(lineOf(f.flow.at)),
+      ]),
+      ...network.compartments.flatMap((c) =>
+        arriving(c.name) === ""
+          ? []
+          : [[math(`${throughFlow(c.name)} = ${arriving(c.name)}`), say(through(c.name)), at(lineOf(c.at))]],
+      ),
+      ...streams.map((s) => [math(streamRule(s, streams)), say(s.flow), at(s.line)]),
+      ...inside.map((l) => [math(l.symbol), say(l.flow), at(l.line)]),
+      ...network.outlets.map((o, i) => [
+        math(`${throughFlow(o.name)} = ${arriving(o.name)}`),
+        say(outlets[i].flow),
+        at(lineOf(o.at)),
+      ]),
+    ],
+  );
+}
+
+/** How much a stream carries, as the file decides it. */
+function streamRule({ from, to, is }: WrittenStream, all: readonly WrittenStream[]): string {
+  if ("exchange" in is) return `${streamFlow(from, to, true)} = ${texExpression(is.exchange.flow.expression)}`;
+  const { split } = is.stream;
+  const left = streamFlow(from, to);
+  if (split.is === "all") return `${left} = ${throughFlow(from)}`;
+  if (split.is === "flow") return `${left} = ${texExpression(split.value.expression)}`;
+  if (split.is === "share") {
+    const share = texExpression(split.value.expression);
+    return `${left} = ${split.value.expression.type === "binary" ? `\\left(${share}\\right)` : share}\\, ${throughFlow(from)}`;
+  }
+  const others = all.filter((o) => o.from === from && "stream" in o.is && o.is.stream !== is.stream);
+  return `${left} = ${[throughFlow(from), ...others.map((o) => streamFlow(from, o.to))].join(" - ")}`;
+}
+
+function bodiesTable({ network, env, nodes, volume: total }: Plant): string {
+  const unit = network.units.unitFor(dimensions.volume);
+  const say = (v: number): string => formatQuantity(v, unit, 6);
+  const bodies = network.compartments.flatMap((c) => [
+    ...Object.entries(c.values).map(([key, v]) => {
+      const left = key === "volume" ? volume(c.name) : `\\text{${key}}_{${texName(c.name)}}`;
+      const value = formatQuantity(v.of(env), v.unit ?? network.units.unitFor(v.dimension), 6);
+      return [math(`${left} = ${texExpression(v.expression)}`), value, c.kind.name, at(lineOf(v.at))];
+    }),
+    ...nodes
+      .filter((n) => n.name.startsWith(`${c.name}.`) && n.volume > 0)
+      .map((n) => [math(volume(n.name)), say(n.volume), `part of ${inText(c.name)}`, at(lineOf(c.at))]),
+  ]);
+  const whole = [math("V"), say(total.total), total.dead > 0 ? `${say(total.dead)} of it dead` : "all", ""];
+  return table(["symbol", "value", "kind", "line"], [...bodies, whole]);
+}
+
+function equation({ name, tex, terms, line }: Balance): string {
+  const rows = terms.map((t) => [math(t.tex), inText(t.says), at(t.line)]);
+  return `**${inText(name)}** (${at(line)})\n\n$$${tex}$$\n\n${table(["term", "from", "line"], rows)}`;
+}
+
+function totals(plant: Plant, balances: readonly Balance[]): string {
+  const { network, feeds, outlets, volume: v } = plant;
+  const sum = (parts: readonly string[]): string => (parts.length > 0 ? parts.join(" + ") : "0");
+  const flow = network.units.unitFor(dimensions.flow);
+  const q = feeds.reduce((s, f) => s + f.flow, 0);
+  const out = outlets.reduce((s, o) => s + o.flow, 0);
+  const states = balances.filter((b) => b.is === "state");
+  const delays = balances.filter((b) => b.is === "delay" || b.is === "body");
+  const held = [
+    ...states.map((b) => `${volume(b.name)} ${concentration(b.name)}`),
+    ...delays.map((b) =>
+      b.is === "delay"
+        ? `${throughFlow(b.name)} \\int_{t}^{t + ${spaceTime(b.name)}} ${concentration(b.name)}(t')\\,dt'`
+        : `m_{\\text{${b.name}}}`,
+    ),
+  ];
+  const carried = (ports: readonly { name: string }[]): string =>
+    sum(ports.map((p) => `${throughFlow(p.name)} ${concentration(p.name)}`));
+  const lines = [
+    `Liquid: $${sum(feeds.map((f) => throughFlow(f.name)))} = ${sum(outlets.map((o) => throughFlow(o.name)))}$, that is ${formatQuantity(q, flow, 6)} in and ${formatQuantity(out, flow, 6)} out.`,
+    `Substance: $\\frac{d}{dt}\\left(${sum(held)}\\right) = ${carried(feeds)} - \\left(${carried(outlets)}\\right)$, which is the sum of all balances above.`,
+  ];
+  if (q > 0)
+    lines.push(`Mean time: $\\tau = V_\\text{active} / Q = ${texQuantity(v.active / q, network.units.time)}$.`);
+  return lines.join("\n\n");
+}

@@ -1,0 +1,227 @@
+import { readdirSync, readFileSync } from "node:fs";
+import fc from "fast-check";
+import { describe, expect, test } from "vitest";
+import { compile } from "../../src/compile/compile.js";
+import type { Plant } from "../../src/compile/plant.js";
+import type { Difference } from "../../src/diff/difference.js";
+import { figuresOf } from "../../src/diff/figures.js";
+import { diffNetworks, type NetworkDiff } from "../../src/diff/network.js";
+import { type NetworkDocument, parseNetwork } from "../../src/parse/network.js";
+import { scribble, seeded } from "../tidy/scribble.js";
+
+function network(text: string): NetworkDocument {
+  const { document, problems } = parseNetwork(text);
+  expect(problems.filter((p) => p.severity === "error")).toEqual([]);
+  return document as NetworkDocument;
+}
+
+const diff = (a: string, b: string): NetworkDiff => diffNetworks(network(a), network(b));
+
+/** Without places, to compare. */
+const said = ({ differences }: NetworkDiff): Omit<Difference, "lineBefore" | "lineAfter">[] =>
+  differences.map(({ lineBefore: _, lineAfter: __, ...rest }) => rest);
+
+const vessel = `network: Vessel
+format: 1
+constants:
+  total: 1000 L ± 1 %
+parameters:
+  bypass: {value: 10 %, between: [0 %, 60 %]}
+  held: {value: 200 L, between: [5 L, 480 L]}
+requires: [held < total]
+feeds:
+  feed: {flow: 10 L/min, to: {first: rest, product: bypass}}
+compartments:
+  first: {kind: stirred, volume: 300 L, to: second}
+  second: {kind: stirred, volume: 300 L, to: bulk}
+  bulk: {kind: stirred, volume: total - held - 600 L, to: product, exchange: {corner: 1.5 L/min}}
+  corner: {kind: stirred, volume: held}
+outlets: [product]
+checks:
+  - {volume: all, equals: 1000 L}
+`;
+
+describe("no difference in meaning", () => {
+  test.each([
+    ["itself", vessel],
+    [
+      "other units",
+      vessel.replace("total: 1000 L", "total: 1 m3").replace("1.5 L/min", "90 L/h").replace("10 %, b", "0.1, b"),
+    ],
+    ["a spread said otherwise", vessel.replace("± 1 %", "+/- 10 L")],
+    ["a sum in another order", vessel.replace("held < total", "held + 0 L < total").replace("held + 0 L", "held")],
+    ["a requirement turned round", vessel.replace("held < total", "total > held")],
+    ["all by way of a rest", vessel.replace("to: second}", "to: {second: rest}}")],
+    ["all by way of a share", vessel.replace("to: second}", "to: {second: 100 %}}")],
+    [
+      "an exchange written on the other side",
+      vessel
+        .replace(", exchange: {corner: 1.5 L/min}", "")
+        .replace("volume: held}", "volume: held, exchange: {bulk: 1.5 L/min}}"),
+    ],
+    ["notes", vessel.replace("format: 1", "format: 1\nnotes: As built.")],
+    ["words about a parameter", vessel.replace("60 %]}", "60 %], about: what slips by}")],
+  ])("%s", (_, other) => expect(said(diff(vessel, other))).toEqual([]));
+
+  test("terms and factors in any order", () => {
+    const a = vessel.replace("1.5 L/min", "0.1 * feed.flow * 2 + 1 L/min");
+    const b = vessel.replace("1.5 L/min", "1 L/min + 2 * (feed.flow * 0.1)");
+    expect(said(diff(a, b))).toEqual([]);
+  });
+
+  test("shares that a rest makes up", () => {
+    const a = vessel
+      .replace("product: bypass", "product: 25 %")
+      .replace("  bypass: {value: 10 %, between: [0 %, 60 %]}\n", "");
+    expect(said(diff(a, a.replace("first: rest", "first: 75 %")))).toEqual([]);
+  });
+
+  const shipped = readdirSync("networks/demo")
+    .map((f) => readFileSync(`networks/demo/${f}`, "utf8"))
+    .flatMap((text) => parseNetwork(text).document ?? []);
+  test("however a network is typed", () => {
+    expect(shipped.length).toBeGreaterThan(3);
+    fc.assert(
+      fc.property(fc.constantFrom(...shipped), fc.integer(), (n, seed) => {
+        const again = network(scribble(n.tree, seeded(seed)).text);
+        expect(diffNetworks(n, again).differences).toEqual([]);
+      }),
+      { numRuns: 40 },
+    );
+  });
+});
+
+describe("what changed", () => {
+  const one = (other: string): object => {
+    const all = said(diff(vessel, other));
+    expect(all).toHaveLength(1);
+    return all[0];
+  };
+
+  test("a moved volume", () => {
+    expect(
+      one(vessel.replace("first: {kind: stirred, volume: 300 L", "first: {kind: stirred, volume: 0.25 m3")),
+    ).toEqual({ what: "changed", of: "compartment", name: "first", key: "volume", before: "300 L", after: "0.25 m3" });
+  });
+  test("bounds", () => {
+    expect(one(vessel.replace("[0 %, 60 %]", "[0 %, 0.5]"))).toEqual({
+      what: "changed",
+      of: "parameter",
+      name: "bypass",
+      key: "between",
+      before: "[0 %, 60 %]",
+      after: "[0 %, 0.5]",
+    });
+  });
+  test("a rule in place of the number that it gives", () => {
+    expect(one(vessel.replace("1.5 L/min", "0.15 * feed.flow"))).toEqual({
+      what: "changed",
+      of: "exchange",
+      name: "bulk <> corner",
+      key: "flow",
+      before: "1.5 L/min",
+      after: "0.15 * feed.flow",
+    });
+  });
+  test("a rerouted stream", () => {
+    expect(one(vessel.replace("to: second}", "to: {second: rest, first: 20 %}}"))).toEqual({
+      what: "changed",
+      of: "compartment",
+      name: "first",
+      key: "to",
+      before: "second",
+      after: "{second: rest, first: 20 %}",
+    });
+  });
+  test("a parameter that became a constant", () => {
+    const other = vessel
+      .replace("  bypass: {value: 10 %, between: [0 %, 60 %]}\n", "")
+      .replace("total: 1000 L ± 1 %", "total: 1000 L ± 1 %\n  bypass: 10 %");
+    expect(said(diff(vessel, other)).map((d) => d.key)).toEqual(["role", "between"]);
+  });
+  test("a kind, a number of tanks", () => {
+    const tubes = vessel.replace("first: {kind: stirred", "first: {kind: tubular");
+    expect(one(tubes)).toMatchObject({ key: "kind", before: "stirred", after: "tubular" });
+    const chain = vessel.replace("first: {kind: stirred", "first: {kind: stirred, repeat: 2");
+    expect(one(chain)).toMatchObject({ name: "first", key: "repeat", after: "2" });
+  });
+  test("statements", () => {
+    expect(said(diff(vessel, vessel.replace("equals: 1000 L", "equals: 1000 L, within: 20 %")))).toEqual([
+      { what: "added", of: "check", name: "", after: "volume all equals 1000 L within 20 %" },
+      { what: "removed", of: "check", name: "", before: "volume all equals 1000 L within 0.1 %" },
+    ]);
+    const other = vessel.replace("requires: [held < total]", "requires: [held < total, held < 400 L]");
+    expect(one(other)).toEqual({ what: "added", of: "requirement", name: "", after: "held < 400 L" });
+  });
+  test("what is new and what is gone", () => {
+    const other = vessel
+      .replace(
+        "  second: {kind: stirred, volume: 300 L, to: bulk}\n",
+        "  extra: {kind: tubular, volume: 20 L, to: bulk}\n",
+      )
+      .replace("to: second}", "to: extra}");
+    expect(said(diff(vessel, other)).map(({ what, name }) => `${what} ${name}`)).toEqual([
+      "changed first",
+      "added extra",
+      "removed second",
+    ]);
+  });
+});
+
+describe("renames", () => {
+  const rename = (text: string, pairs: Readonly<Record<string, string>>): string =>
+    Object.entries(pairs).reduce(
+      (t, [from, to]) => t.replace(new RegExp(`(?<![\\w-])${from}(?![\\w-])`, "g"), to),
+      text,
+    );
+  test("of one body", () => {
+    expect(said(diff(vessel, rename(vessel, { corner: "pocket" })))).toEqual([
+      { what: "renamed", of: "compartment", name: "pocket", was: "corner" },
+    ]);
+  });
+  test("of everything, twins in a row included", () => {
+    const pairs = {
+      first: "one",
+      second: "two",
+      corner: "pocket",
+      bulk: "main",
+      held: "kept",
+      bypass: "slip",
+      total: "all-in",
+      feed: "inlet",
+      product: "out",
+    };
+    const all = said(diff(vessel, rename(vessel, pairs)));
+    expect(all.every((d) => d.what === "renamed")).toBe(true);
+    expect(Object.fromEntries(all.map((d) => [d.was, d.name]))).toEqual(pairs);
+  });
+  test("not where more differs", () => {
+    const other = rename(vessel, { corner: "pocket" }).replace("1.5 L/min", "2 L/min");
+    expect(
+      said(diff(vessel, other))
+        .map((d) => d.what)
+        .sort(),
+    ).toEqual(["added", "added", "removed", "removed"]);
+  });
+  test("figures follow the names", () => {
+    const [a, b] = [network(vessel), network(rename(vessel, { first: "one", second: "two" }))];
+    const { matching } = diffNetworks(a, b);
+    const figures = figuresOf(compile(a).plant as Plant, compile(b).plant as Plant, matching);
+    expect(figures.length).toBeGreaterThan(10);
+    expect(figures.every((f) => f.same)).toBe(true);
+  });
+});
+
+test("flows and space times before and after, each in the unit of its file", () => {
+  const [a, b] = [network(vessel), network(vessel.replace("flow: 10 L/min", "flow: 1.2 m3/h"))];
+  const { matching } = diffNetworks(a, b);
+  const figures = figuresOf(compile(a).plant as Plant, compile(b).plant as Plant, matching);
+  const through = figures.find((f) => f.name === "first>second");
+  expect(through?.before?.value).toBeCloseTo(9e-3 / 60, 12);
+  expect(through?.after?.value).toBeCloseTo(18e-3 / 60, 12);
+  const time = figures.find((f) => f.of === "space time" && f.name === "all");
+  expect(time?.before?.unit.name).toBe("min");
+  expect(time?.after?.unit.name).toBe("h");
+  expect((time?.before?.value ?? 0) / (time?.after?.value ?? 1)).toBeCloseTo(2, 12);
+  expect(figures.filter((f) => f.of === "volume").every((f) => f.same)).toBe(true);
+});
