@@ -13,6 +13,8 @@ import { fitJson } from "./json/fit.js";
 import { InputError, type Outcome, UsageError } from "./outcome.js";
 import { progressOn } from "./progress.js";
 import { fitText } from "./text/fit.js";
+import { blocks } from "./text/table.js";
+import { writeFit } from "./write-fit.js";
 
 export interface FitOptions {
   readonly trial: readonly string[];
@@ -20,10 +22,12 @@ export interface FitOptions {
   readonly starts?: number;
   readonly seed: number;
   readonly strict?: true;
+  readonly write?: true;
 }
 
 /** `fit NETWORK --trial FILE…`: the parameters of a network from all trials at once. */
 export function fitCommand(file: string, options: FitOptions, { inputs, io }: Context): Outcome {
+  if (options.write && file === "-") throw new UsageError("--write needs a file to write to, not standard input");
   const network = inputs.document(file, parseNetwork);
   const trials = options.trial.map((path) => inputs.document(path, parseTrial));
   const { report, problems } = collector();
@@ -41,13 +45,20 @@ export function fitCommand(file: string, options: FitOptions, { inputs, io }: Co
   });
   progress.done();
   if (!outcome.fit) throw new InputError(outcome.problems);
-  const status = statusOf(outcome.fit, options.strict === true);
+  const fitStatus = statusOf(outcome.fit, options.strict === true);
+  const writing = options.write ? writeFit(file, network, outcome.fit, fitStatus, io) : undefined;
+  const status = fitStatus === 0 && writing?.failed ? 1 : fitStatus;
   return {
     status,
-    text: fitText(network.title, outcome.fit),
-    json: { ok: status === 0, network: network.title, ...fitJson(outcome.fit, network.units.time) },
-    problems: outcome.problems,
-    notes: notesOf(outcome.fit, status),
+    text: blocks(fitText(network.title, outcome.fit), writing?.text),
+    json: {
+      ok: status === 0,
+      network: network.title,
+      ...fitJson(outcome.fit, network.units.time),
+      ...(writing ? { written: writing.written } : {}),
+    },
+    problems: [...outcome.problems, ...(writing?.problems ?? [])],
+    notes: [...notesOf(outcome.fit, fitStatus), ...(writing?.notes ?? [])],
   };
 }
 

@@ -114,13 +114,13 @@ function addFit(root: Command, { perform, inputs, io }: Stage): void {
     .option("--free <names>", "parameters to estimate, by commas (default: all)", collectNames)
     .option("--starts <n>", "starts besides the file's own values", whole(0))
     .option("--seed <n>", "seed of the starts", whole(0), 1)
-    .option("--strict", "exit 1 when a parameter ends at a bound or cannot be told");
-  later(fit, "--profile", "--bootstrap <n>", "--resume <file>", "--write").action(
-    (network: string, options, self: Command) =>
-      perform("fit", async () => {
-        refuseLater(self);
-        return (await import("./fit.js")).fitCommand(network, options, { inputs, io });
-      }),
+    .option("--strict", "exit 1 when a parameter ends at a bound or cannot be told")
+    .option("--write", "put the values back into the network's file, comments kept");
+  later(fit, "--profile", "--bootstrap <n>", "--resume <file>").action((network: string, options, self: Command) =>
+    perform("fit", async () => {
+      refuseLater(self);
+      return (await import("./fit.js")).fitCommand(network, options, { inputs, io });
+    }),
   );
 }
 

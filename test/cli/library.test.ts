@@ -174,3 +174,50 @@ describe("equations", () => {
     expect((await backmix(["equations", "broken.yaml"], { files })).status).toBe(1);
   });
 });
+
+describe("fit --write", () => {
+  const args = ["fit", "tank.yaml", "--trial", "pulse.yaml", "--write"];
+  const text = tank.replace("100 L, between", "100 L,  between").replace("[1 L, 1000 L]}", "[1 L, 1000 L]}  # wetted");
+
+  test("puts the value back and touches nothing else", async () => {
+    const { status, out, written } = await backmix(args, { files: { ...files, "tank.yaml": text } });
+    expect(status).toBe(0);
+    const [[path, after]] = [...written];
+    expect(path).toBe("tank.yaml");
+    const value = /value: (\S+) L/.exec(after)?.[1] as string;
+    expect(Number(value)).toBeCloseTo(80, 3);
+    expect(after).toBe(text.replace("value: 100 L", `value: ${value} L`));
+    expect(out).toContain(`written to tank.yaml\n  size: 100 L -> ${value} L`);
+    const { document } = await json(args, { files: { ...files, "tank.yaml": text } });
+    expect(at(document, "written.0.after")).toBe(`${value} L`);
+  });
+
+  test("leaves the file alone where a value cannot be put back", async () => {
+    const anchored = tank
+      .replace("value: 100 L", "value: &v 100 L")
+      .replace("outlets", "constants: {other: *v}\noutlets");
+    const { status, err, written } = await backmix(args, { files: { ...files, "tank.yaml": anchored } });
+    expect(status).toBe(1);
+    expect(err).toContain("not-written-back");
+    expect(err).toContain("tank.yaml is left as it was");
+    expect(written.size).toBe(0);
+  });
+
+  test("leaves the file alone after an interrupt, or when it changed meanwhile", async () => {
+    const stopped = await backmix(args, { files, cancelled: () => true });
+    expect(stopped.status).toBe(130);
+    expect(stopped.written.size).toBe(0);
+    let reads = 0;
+    const { status, err, written } = await backmix(args, {
+      files: {
+        ...files,
+        get "tank.yaml"() {
+          return reads++ === 0 ? tank : `${tank}# edited\n`;
+        },
+      },
+    });
+    expect(status).toBe(1);
+    expect(err).toContain("it changed while the fit ran");
+    expect(written.size).toBe(0);
+  });
+});

@@ -31,7 +31,7 @@ describe("wrong usage ends with 2, a hint and no stack", () => {
     ["a fit without trials", ["fit", "tank.yaml"]],
     ["profiles of later", ["fit", "tank.yaml", "--trial", "pulse.yaml", "--profile"]],
     ["a bootstrap of later", ["fit", "tank.yaml", "--trial", "pulse.yaml", "--bootstrap", "99"]],
-    ["writing of later", ["fit", "tank.yaml", "--trial", "pulse.yaml", "--write"]],
+    ["writing to standard input", ["fit", "-", "--trial", "pulse.yaml", "--write"]],
     ["resuming of later", ["fit", "tank.yaml", "--trial", "pulse.yaml", "--resume", "x.json"]],
     ["an unknown parameter", ["fit", "tank.yaml", "--trial", "pulse.yaml", "--free", "volume"]],
     ["a picture of later", ["draw", "tank.yaml", "-o", "tank.png"]],
