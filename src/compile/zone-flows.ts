@@ -1,0 +1,57 @@
+import { tableInflow, type ZoneTable } from "../compartments/zone-table.js";
+import type { Network } from "../model/network.js";
+import { reconcileFlows } from "../numerics/reconcile.js";
+import type { Report } from "../problems/report.js";
+import { dimensions } from "../units/dimension.js";
+import type { Say, SolvedStream } from "./flows.js";
+
+/** Relative; closer than this, streams and table agree but for rounding. */
+const rounding = 1e-14;
+
+/**
+ * Every zoned body with the flows of its table scaled to what streams bring: by compartment, in file order. Without
+ * `follow: inflow` they must bring what the table says.
+ * @returns undefined where they do not; reported
+ */
+export function zoneFlows(
+  network: Network,
+  streams: readonly SolvedStream[],
+  report: Report,
+  say: Say,
+): ReadonlyMap<number, ZoneTable> | undefined {
+  const zoned = new Map<number, ZoneTable>();
+  let good = true;
+  network.compartments.forEach((c, i) => {
+    if (!c.zones) return;
+    const { zones, name } = c;
+    const place = network.feeds.length + i;
+    const into = (terminal: string) => streams.filter((s) => s.to === place && s.stream.enters === terminal);
+    const enters = Float64Array.from(zones.inlets, (t) => into(t.name).reduce((sum, s) => sum + s.flow, 0));
+    const total = enters.reduce((sum, q) => sum + q, 0);
+    const factor = total / tableInflow(zones);
+    const text = (q: number) => say(q, dimensions.flow);
+    zones.inlets.forEach((t, k) => {
+      const wanted = zones.follow ? t.flow * factor : t.flow;
+      if (Math.abs(enters[k] - wanted) <= zones.tolerance * Math.max(enters[k], wanted)) return;
+      good = false;
+      const data = { name, inlet: t.name, brings: text(enters[k]), table: text(t.flow), shares: zones.follow };
+      report("zone-inflow", into(t.name)[0]?.stream.at ?? c.at, data, { at: t.at, says: "the table names it here" });
+    });
+    if (!good) return;
+    const flow = scaled(zones, enters, factor);
+    if (flow === "impossible") {
+      good = false;
+      report("zone-irreconcilable", c.at, { name });
+    } else zoned.set(i, { ...zones, flow });
+  });
+  return good ? zoned : undefined;
+}
+
+function scaled(zones: ZoneTable, enters: Float64Array, factor: number): Float64Array | "impossible" {
+  const flow = factor === 1 ? zones.flow : zones.flow.map((q) => q * factor);
+  const agree = zones.inlets.every((t, k) => Math.abs(enters[k] - t.flow * factor) <= rounding * enters[k]);
+  if (agree) return flow;
+  const outlets = Float64Array.from(zones.outlets, (t) => t.flow * factor);
+  const { volume, from, to } = zones;
+  return reconcileFlows({ size: volume.length, from, to, flow }, { inlets: enters, outlets });
+}
