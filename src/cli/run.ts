@@ -2,6 +2,7 @@ import { CommanderError } from "commander";
 import { problemJson } from "../problems/json.js";
 import { printProblems } from "../problems/print.js";
 import type { Problem } from "../problems/problem.js";
+import { RefusedError } from "../problems/refused.js";
 import { Inputs } from "./inputs.js";
 import type { ExitStatus, Io } from "./io.js";
 import { InputError, type Outcome, UsageError } from "./outcome.js";
@@ -81,7 +82,8 @@ function printForPeople({ text, problems = [], notes = [] }: Outcome, warnings: 
 }
 
 function outcomeOf(e: unknown, said: string, args: readonly string[]): Outcome {
-  if (e instanceof InputError) return { status: 1, text: "", json: { ok: false }, problems: e.problems };
+  if (e instanceof InputError || e instanceof RefusedError)
+    return { status: 1, text: "", json: { ok: false }, problems: e.problems };
   if (e instanceof UsageError) return wrongUsage(e.message, args);
   if (e instanceof CommanderError) {
     if (e.exitCode === 0) return { status: 0, text: said, json: { text: said.trimEnd() } };

@@ -1,8 +1,19 @@
+import { cascade } from "./cascade.js";
 import { dead } from "./dead.js";
+import { dispersed } from "./dispersed.js";
 import { junction } from "./junction.js";
 import type { CompartmentKind } from "./kind.js";
+import { laminar } from "./laminar.js";
 import { stirred } from "./stirred.js";
 import { tubular } from "./tubular.js";
 
 /** The one table of kinds: what is in it exists everywhere, in the language, the engines, the drawings and the manual. */
-export const kinds: Readonly<Record<string, CompartmentKind>> = { stirred, tubular, junction, dead };
+export const kinds: Readonly<Record<string, CompartmentKind>> = {
+  stirred,
+  tubular,
+  dispersed,
+  laminar,
+  cascade,
+  junction,
+  dead,
+};

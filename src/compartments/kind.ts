@@ -1,26 +1,33 @@
 import type { KeyShape } from "../schema/shape.js";
 import type { Box, Svg } from "../svg/svg.js";
+import type { Block } from "./block.js";
 
-/** Values of a compartment's quantity keys (SI) and of its whole-number keys. */
+/** What a compartment's keys say, evaluated. A key inside a key has both names: `stagnant.volume`. */
 export interface KindValues {
+  /** Quantities, SI. */
   readonly values: Readonly<Record<string, number>>;
+  /** Whole numbers. */
   readonly counts: Readonly<Record<string, number>>;
+  /** Choices. */
+  readonly words: Readonly<Record<string, string>>;
+  /** Keys of `values` that are plain numbers: shares, where a flow might stand too. */
+  readonly shares: ReadonlySet<string>;
 }
 
 /** Everything that one kind of compartment is. One kind, one file, one line in `kinds`. */
 export interface CompartmentKind {
   readonly name: string;
-  /** One sentence for schema, hover and manual. */
+  /** A sentence or two for schema, hover and manual. */
   readonly says: string;
-  /** Keys besides `kind`, `to`, `exchange`. */
+  /** Keys besides `kind`, `to`, `exchange`: quantities, whole numbers, choices, and records of quantities. */
   readonly keys: Readonly<Record<string, KeyShape>>;
   /** May streams pass through it? `dead` says no. */
   readonly flows: boolean;
   /** May any of this kind have `exchange:`, and may this very one? */
   readonly exchanges: boolean;
   readonly mayExchange: (counts: Readonly<Record<string, number>>) => boolean;
-  /** Liquid held, m3. */
-  readonly volume: (of: KindValues) => number;
+  /** Liquid held, pockets included, m3. */
+  readonly volume: (of: Pick<KindValues, "values" | "counts">) => number;
   /** Spells the compartment out in primitive nodes; returns where streams enter and leave (undefined: not in the balance). */
   spell(maker: NodeMaker, of: KindValues): Ports | undefined;
   /** Its picture inside a box whose area stands for the volume. */
@@ -36,10 +43,16 @@ export interface Ports {
   readonly members: readonly { readonly suffix: string; readonly node: number }[];
 }
 
-/** Makes primitive nodes; `chain` links two inside a compartment: all that leaves the first enters the second. */
+/** Makes primitive nodes and links between them. */
 export interface NodeMaker {
+  /** What streams bring and take, m3/s. */
+  readonly through: number;
   cell(volume: number, suffix?: string): number;
-  delay(volume: number, suffix?: string): number;
+  delay(volume: number): number;
   joint(): number;
+  block(block: Block): number;
+  /** All of the through-flow that leaves the first enters the second. */
   chain(from: number, to: number): void;
+  /** A flow both ways between two nodes, m3/s, on top of the through-flow. */
+  exchange(a: number, b: number, flow: number): void;
 }

@@ -1,7 +1,11 @@
 import { stirredBody } from "../svg/bodies.js";
-import type { CompartmentKind, Ports } from "./kind.js";
+import type { CompartmentKind, KindValues, NodeMaker, Ports } from "./kind.js";
+import { heldIn, pocketsOf, stagnantKey, withPockets } from "./stagnant.js";
 
-/** Ideal stirred tank; `repeat` puts n equal ones in series. MacMullin & Weber, Trans. AIChE 31 (1935) 409-458. */
+/**
+ * Ideal stirred tank; `repeat` puts n equal ones in series (MacMullin & Weber, Trans. AIChE 31 (1935) 409-458), with
+ * `backflow` between neighbours (Roemer & Durbin, Ind. Eng. Chem. Fundam. 6 (1967) 120-129).
+ */
 export const stirred: CompartmentKind = {
   name: "stirred",
   says: "An ideal stirred tank: what enters is spread at once over the whole volume. `repeat: n` puts n equal ones in series.",
@@ -18,20 +22,48 @@ export const stirred: CompartmentKind = {
       example: "3",
       default: "1",
     },
+    backflow: {
+      shape: { is: "quantity", dimension: ["ratio", "flow"], atLeast: 0 },
+      needs: "repeat",
+      says: "Flow that returns upstream between each two tanks of `repeat`, on top of what goes forward: a flow, or a share of the through-flow, which may exceed 100 %.",
+      example: "30 %",
+    },
+    stagnant: {
+      ...stagnantKey,
+      says: "Quiet pockets, each mixed in itself, that exchange with the tank; with `repeat` every tank has its equal share of them.",
+    },
   },
   flows: true,
   exchanges: true,
   mayExchange: (counts) => (counts.repeat ?? 1) === 1,
-  volume: ({ values }) => values.volume,
-  spell(maker, { values, counts }): Ports {
-    const n = counts.repeat ?? 1;
+  volume: (of) => of.values.volume + heldIn(of),
+  spell(maker, of): Ports {
+    const n = of.counts.repeat ?? 1;
     const members = Array.from({ length: n }, (_, i) => {
       const suffix = n > 1 ? String(i + 1) : "";
-      return { suffix, node: values.volume > 0 ? maker.cell(values.volume / n, suffix) : maker.joint() };
+      return { suffix, node: of.values.volume > 0 ? maker.cell(of.values.volume / n, suffix) : maker.joint() };
     });
-    for (let i = 1; i < n; i++) maker.chain(members[i - 1].node, members[i].node);
+    const back = backflow(maker, of);
+    for (let i = 1; i < n; i++) {
+      maker.chain(members[i - 1].node, members[i].node);
+      if (back > 0) maker.exchange(members[i - 1].node, members[i].node, back);
+    }
+    const pockets = pocketsOf(of);
+    if (pockets) {
+      for (const { suffix, node } of members) {
+        const pocket = maker.cell(pockets.volume / n, suffix ? `${suffix}.stagnant` : "stagnant");
+        maker.exchange(node, pocket, pockets.exchange / n);
+      }
+    }
     return { entry: members[0].node, exit: members[n - 1].node, members: n > 1 ? members : [] };
   },
-  picture: (box, { counts }) => stirredBody(box, counts.repeat ?? 1),
+  picture: (box, of) =>
+    withPockets(box, of, (inner) => stirredBody(inner, of.counts.repeat ?? 1, (of.values.backflow ?? 0) > 0)),
   aspect: ({ counts }) => Math.min(counts.repeat ?? 1, 6),
 };
+
+/** m3/s. */
+function backflow({ through }: NodeMaker, { values, shares }: KindValues): number {
+  const written = values.backflow ?? 0;
+  return shares.has("backflow") ? written * through : written;
+}

@@ -1,5 +1,8 @@
+import { complex } from "../numerics/complex.js";
 import { tubularBody } from "../svg/bodies.js";
+import { type Block, formulaBlock, type Pockets, pocketTime } from "./block.js";
 import type { CompartmentKind, Ports } from "./kind.js";
+import { heldIn, pocketsOf, stagnantKey, withPockets } from "./stagnant.js";
 
 /** Ideal plug flow: a true transport delay V/Q, never smeared. Danckwerts, Chem. Eng. Sci. 2 (1953) 1-13. */
 export const tubular: CompartmentKind = {
@@ -9,18 +12,40 @@ export const tubular: CompartmentKind = {
     volume: {
       shape: { is: "quantity", dimension: "volume" },
       required: true,
-      says: "Liquid held.",
+      says: "Liquid held in the flow.",
       example: "150 L",
     },
+    stagnant: stagnantKey,
   },
   flows: true,
   exchanges: false,
   mayExchange: () => false,
-  volume: ({ values }) => values.volume,
-  spell(maker, { values }): Ports {
-    const node = values.volume > 0 ? maker.delay(values.volume) : maker.joint();
+  volume: (of) => of.values.volume + heldIn(of),
+  spell(maker, of): Ports {
+    const { volume } = of.values;
+    const pockets = pocketsOf(of);
+    const node = pockets
+      ? maker.block(pocketedTube(volume, pockets))
+      : volume > 0
+        ? maker.delay(volume)
+        : maker.joint();
     return { entry: node, exit: node, members: [] };
   },
-  picture: (box) => tubularBody(box),
+  picture: (box, of) => withPockets(box, of, tubularBody),
   aspect: () => 4,
 };
+
+/** Plug flow past pockets: a delay V/Q, and behind it what the pockets held back. */
+function pocketedTube(volume: number, pockets: Pockets): Block {
+  return {
+    ...formulaBlock({
+      is: "plug flow past stagnant pockets",
+      mixing: { is: "plug" },
+      volume,
+      pockets,
+      response: (z, { exp, scale }) => exp(scale(z, -1)),
+    }),
+    delay: (flow) => volume / flow,
+    undelayed: (s, flow) => complex.exp(complex.scale(pocketTime(s, complex, pockets, flow), -1)),
+  };
+}

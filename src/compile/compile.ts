@@ -1,12 +1,12 @@
 import type { Network } from "../model/network.js";
 import { backEdges, stronglyConnected } from "../numerics/graph.js";
 import type { Problem } from "../problems/problem.js";
-import { collector, type Report } from "../problems/report.js";
-import { type Dimension, dimensions } from "../units/dimension.js";
+import { collector } from "../problems/report.js";
 import { formatQuantity } from "../units/format.js";
-import { evaluateNames, kindValues } from "./evaluate.js";
-import { balanceFlows, type Flows } from "./flows.js";
+import { evaluateNames } from "./evaluate.js";
+import { balanceFlows, type Flows, type Say } from "./flows.js";
 import type { Plant, PlantStream, Settings } from "./plant.js";
+import { valuesInRange, volumesOf } from "./ranges.js";
 import { spellOut } from "./spell.js";
 
 /**
@@ -26,40 +26,11 @@ export const problemsAt = (network: Network, settings: Settings): Problem[] => b
 function balance(network: Network, settings: Settings) {
   const { report, problems } = collector();
   const env = evaluateNames(network, settings);
-  const volumes = volumesOf(network, env, report);
-  const flows = balanceFlows(network, env, report, (si, dimension) => say(network, si, dimension));
-  exchangesPositive(network, env, report);
+  const say: Say = (si, dimension) => formatQuantity(si, network.units.unitFor(dimension), 6);
+  const volumes = volumesOf(network, env, report, say);
+  const flows = balanceFlows(network, env, report, say);
+  valuesInRange(network, env, report, say);
   return { env, volumes, flows, problems };
-}
-
-const say = (network: Network, si: number, dimension: Dimension) =>
-  formatQuantity(si, network.units.unitFor(dimension), 6);
-
-function volumesOf(network: Network, env: Float64Array, report: Report): Float64Array {
-  return Float64Array.from(network.compartments, (c) => {
-    const volume = c.kind.volume(kindValues(c, env));
-    const at = c.values.volume?.at ?? c.at;
-    if (!Number.isFinite(volume)) {
-      report("not-finite", at, { what: `the volume of '${c.name}'`, infinite: !Number.isNaN(volume) });
-    } else if (volume < 0) {
-      report("negative-volume", at, { name: c.name, value: say(network, volume, dimensions.volume) });
-    }
-    return volume;
-  });
-}
-
-function exchangesPositive(network: Network, env: Float64Array, report: Report): void {
-  for (const c of network.compartments) {
-    for (const e of c.exchanges) {
-      const flow = e.flow.of(env);
-      const name = `between '${c.name}' and '${e.partner}'`;
-      if (!Number.isFinite(flow)) {
-        report("not-finite", e.flow.at, { what: `the flow ${name}`, infinite: !Number.isNaN(flow) });
-      } else if (flow < 0) {
-        report("negative-flow", e.flow.at, { name, value: say(network, flow, dimensions.flow), exchange: true });
-      }
-    }
-  }
 }
 
 function plantOf(network: Network, env: Float64Array, volumes: Float64Array, flows: Flows): Plant {

@@ -1,4 +1,6 @@
+import type { KindValues } from "../compartments/kind.js";
 import type { Compartment, Network } from "../model/network.js";
+import { isRatio } from "../units/dimension.js";
 import type { Settings } from "./plant.js";
 
 /** Values of all names, SI, one slot each: the file's own, or those in `settings`. */
@@ -12,8 +14,13 @@ export function evaluateNames(network: Network, settings: Settings = {}): Float6
   return env;
 }
 
-/** The quantity and whole-number keys of a compartment, evaluated. */
-export function kindValues(c: Compartment, env: ArrayLike<number>) {
-  const values = Object.fromEntries(Object.entries(c.values).map(([key, v]) => [key, v.of(env)]));
-  return { values, counts: c.counts };
+/** The keys of a compartment, evaluated. */
+export function kindValues(c: Compartment, env: ArrayLike<number>): KindValues {
+  const values: Record<string, number> = {};
+  const shares = new Set<string>();
+  for (const key in c.values) {
+    values[key] = c.values[key].of(env);
+    if (isRatio(c.values[key].dimension)) shares.add(key);
+  }
+  return { values, counts: c.counts, words: c.words, shares };
 }

@@ -68,7 +68,7 @@ export function balanceFlows(network: Network, env: Float64Array, report: Report
 }
 
 /** A value as the file would write it, for messages. */
-type Say = (si: number, dimension: Dimension) => string;
+export type Say = (si: number, dimension: Dimension) => string;
 
 interface Place {
   readonly name: string;

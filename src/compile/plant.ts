@@ -1,7 +1,11 @@
+import type { Block } from "../compartments/block.js";
 import type { Network } from "../model/network.js";
 
-/** What a node of a plant is to an engine: a mixed volume, a transport delay, or a meeting of streams without volume. */
-export const Part = { Cell: 0, Delay: 1, Joint: 2 } as const;
+/**
+ * What a node of a plant is to an engine: a mixed volume, a transport delay, a meeting of streams without volume, or a
+ * block: a body that is known by its transfer function alone.
+ */
+export const Part = { Cell: 0, Delay: 1, Joint: 2, Block: 3 } as const;
 
 /**
  * A balanced, compiled network: primitive nodes and the steady flows between them, SI.
@@ -32,8 +36,10 @@ export interface Plant {
 export interface PlantNode {
   readonly name: string;
   readonly part: (typeof Part)[keyof typeof Part];
-  /** m3; 0 for a joint. */
+  /** m3, a block's pockets included; 0 for a joint. */
   readonly volume: number;
+  /** There where, and only where, `part` is `Block`. */
+  readonly block?: Block;
   /** All that enters, exchange included, m3/s. */
   readonly inflow: number;
 }

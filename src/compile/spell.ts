@@ -1,3 +1,4 @@
+import type { Block } from "../compartments/block.js";
 import type { NodeMaker } from "../compartments/kind.js";
 import type { Network } from "../model/network.js";
 import { kindValues } from "./evaluate.js";
@@ -27,7 +28,12 @@ export function spellOut(network: Network, env: Float64Array, flows: Flows): Spe
     to.push(b);
     flow.push(q);
   };
-  const add = (name: string, part: PlantNode["part"], volume: number) => nodes.push({ name, part, volume }) - 1;
+  const exchange = (a: number, b: number, q: number) => {
+    link(a, b, q);
+    link(b, a, q);
+  };
+  const add = (name: string, part: PlantNode["part"], volume: number, block?: Block) =>
+    nodes.push({ name, part, volume, ...(block ? { block } : {}) }) - 1;
   const joint = (name: string) => {
     const node = add(name, Part.Joint, 0);
     entry.set(name, node);
@@ -38,10 +44,13 @@ export function spellOut(network: Network, env: Float64Array, flows: Flows): Spe
     const through = flows.through[network.feeds.length + i];
     const full = (suffix = "") => (suffix ? `${c.name}.${suffix}` : c.name);
     const maker: NodeMaker = {
+      through,
       cell: (volume, suffix) => add(full(suffix), Part.Cell, volume),
-      delay: (volume, suffix) => add(full(suffix), Part.Delay, volume),
+      delay: (volume) => add(c.name, Part.Delay, volume),
       joint: () => add(c.name, Part.Joint, 0),
+      block: (block) => add(c.name, Part.Block, block.volume + (block.pockets?.volume ?? 0), block),
       chain: (a, b) => link(a, b, through),
+      exchange,
     };
     const ports = c.kind.spell(maker, kindValues(c, env));
     if (!ports) return;
@@ -57,9 +66,7 @@ export function spellOut(network: Network, env: Float64Array, flows: Flows): Spe
   for (const s of flows.streams) link(exit.get(names[s.from]) as number, entry.get(names[s.to]) as number, s.flow);
   for (const c of network.compartments) {
     for (const e of c.exchanges) {
-      const [a, b, q] = [exit.get(c.name) as number, exit.get(e.partner) as number, e.flow.of(env)];
-      link(a, b, q);
-      link(b, a, q);
+      exchange(exit.get(c.name) as number, exit.get(e.partner) as number, e.flow.of(env));
     }
   }
   return { nodes, from: Int32Array.from(from), to: Int32Array.from(to), flow: Float64Array.from(flow), entry, exit };

@@ -1,4 +1,6 @@
 import { checkTrial } from "../check/trial.js";
+import { uncarried } from "../compile/carried.js";
+import { compile } from "../compile/compile.js";
 import type { Network } from "../model/network.js";
 import type { Trial } from "../model/trial.js";
 import type { Problem } from "../problems/problem.js";
@@ -44,6 +46,9 @@ export interface FitOutcome {
  * Never throws on what a file can hold; deterministic for a given seed.
  */
 export function fit(network: Network, trials: readonly Trial[], options: FitOptions = {}): FitOutcome {
+  const { plant } = compile(network);
+  const refused = plant ? uncarried(plant) : [];
+  if (refused.length > 0) return { fit: undefined, problems: refused };
   return fitWith(networkModel(network), network, trials, options);
 }
 

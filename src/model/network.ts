@@ -49,10 +49,12 @@ export interface Compartment {
   readonly name: string;
   readonly at: Span;
   readonly kind: CompartmentKind;
-  /** By key of the kind: bound values. */
+  /** By key of the kind: bound values. A key inside a key has both names: `stagnant.volume`. */
   readonly values: Readonly<Record<string, Value>>;
   /** Whole numbers of the kind (`repeat`). */
   readonly counts: Readonly<Record<string, number>>;
+  /** Choices of the kind (`ends`). */
+  readonly words: Readonly<Record<string, string>>;
   readonly streams: readonly Stream[];
   readonly exchanges: readonly Exchange[];
   readonly toAt: Span;

@@ -1,3 +1,4 @@
+import { requireCarried } from "../compile/carried.js";
 import { Part, type Plant } from "../compile/plant.js";
 import type { Chemistry } from "../model/chemistry.js";
 import type { Duty } from "../model/duty.js";
@@ -39,9 +40,10 @@ export interface Port {
  * together by Newton's method with the exact Jacobian; tubes as initial-value problems along their length.
  *
  * Balances hold to about 1e-11 of each concentration. With a chemistry that has several steady states in a loop this finds
- * the one that the unreacted mixture runs into. Never throws; what did not converge is said in the result.
+ * the one that the unreacted mixture runs into. What did not converge is said in the result.
  * @param chemistry undefined: the feeds only mix
  * @param settings values in place of the duty's (`DutySettings`)
+ * @throws RefusedError where the reaction in a body is not in this version
  */
 export function steadyState(
   plant: Plant,
@@ -49,6 +51,7 @@ export function steadyState(
   duty: Duty,
   settings: DutySettings = {},
 ): SteadyState {
+  requireCarried(plant);
   const conditions = conditionsOf(plant, chemistry, duty, settings);
   const walk = new Walk(plant, conditions);
   for (const group of plant.groups) walk.pass(group);

@@ -77,10 +77,14 @@ function findingOf(fault: Fault, tree: MapNode, kind: DocumentKind, shape: Shape
     case "additionalProperties": {
       const key = String(fault.params.additionalProperty);
       const inside = here.shape && narrow(here.shape, here.node);
-      const known = inside?.is === "record" ? Object.keys(inside.keys).filter((k) => !inside.keys[k].later) : [];
+      const known =
+        inside?.is === "record"
+          ? Object.keys(inside.keys).filter((k) => !inside.keys[k].later && !inside.keys[k].elsewhere)
+          : [];
       const at = locate(tree, shape, `${fault.instancePath}/${pointerPart(key)}`, "").mark;
       return finding(at, () => report("unknown-key", at, { key, where, nearest: nearest(key, known), known }));
     }
+    case "dependentRequired":
     case "required": {
       const key = String(fault.params.missingProperty);
       if (key === "format" && !here.key) return finding(here.mark, () => report("missing-format", here.mark, {}), key);
@@ -127,6 +131,8 @@ function findingOf(fault: Fault, tree: MapNode, kind: DocumentKind, shape: Shape
 type MakeFinding = (at: Span, tell: () => void, own?: string) => Finding;
 
 function notYet(here: Located, report: Report, finding: MakeFinding): Finding {
+  const elsewhere = here.says?.elsewhere;
+  if (elsewhere) return finding(here.mark, () => report("not-here", here.mark, elsewhere));
   const inner = here.shape && narrow(here.shape, here.node);
   const what = inner?.is === "later" ? inner.says : `'${here.name}'`;
   return finding(here.mark, () => report("not-yet", here.mark, { what }));

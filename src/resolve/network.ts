@@ -2,7 +2,8 @@ import { kinds } from "../compartments/index.js";
 import type { Compartment, Feed, Network, Outlet } from "../model/network.js";
 import type { Value } from "../model/value.js";
 import type { Report } from "../problems/report.js";
-import { child, entriesOf, itemsOf, type MapNode, textOf } from "../read/tree.js";
+import { child, entriesOf, itemsOf, type MapNode, type Tree, textOf } from "../read/tree.js";
+import type { KeyShape } from "../schema/shape.js";
 import { resolveChecks } from "./checks.js";
 import { checkName, dimensionsOf, resolveNames } from "./names.js";
 import { resolveRequirements } from "./requirements.js";
@@ -71,28 +72,46 @@ function resolveCompartment(
   const kindName = textOf(node, "kind") ?? "";
   const kind = Object.hasOwn(kinds, kindName) ? kinds[kindName] : undefined;
   if (!kind) return undefined; // the shape check has said so
-  const values: Record<string, Value> = {};
-  const counts: Record<string, number> = {};
-  for (const [key, { shape }] of Object.entries(kind.keys)) {
-    const written = child(node, key);
-    if (!written) continue;
-    if (shape.is === "quantity") {
-      const value = resolveValue(written, dimensionsOf(shape.dimension), scope, report);
-      if (value) values[key] = value;
-    } else if (shape.is === "whole" && written.type === "scalar") {
-      counts[key] = Number(written.text);
-    }
-  }
   return {
     name,
     at,
     kind,
-    values,
-    counts,
+    ...resolveKeys(kind.keys, node, scope, report),
     streams: resolveStreams(child(node, "to"), scope, report),
     exchanges: resolveExchanges(child(node, "exchange"), scope, report),
     toAt: child(node, "to")?.at ?? at,
   };
+}
+
+type Keys = Pick<Compartment, "values" | "counts" | "words">;
+
+/** The keys of a kind by their declaration; those inside a key are named by both. */
+function resolveKeys(
+  keys: Readonly<Record<string, KeyShape>>,
+  node: Tree | undefined,
+  scope: Scope,
+  report: Report,
+  within = "",
+): Keys {
+  const values: Record<string, Value> = {};
+  const counts: Record<string, number> = {};
+  const words: Record<string, string> = {};
+  for (const [key, { shape }] of Object.entries(keys)) {
+    const written = child(node, key);
+    if (!written) continue;
+    const name = within + key;
+    if (shape.is === "quantity") {
+      const value = resolveValue(written, dimensionsOf(shape.dimension), scope, report);
+      if (value) values[name] = value;
+    } else if (shape.is === "record") {
+      const inside = resolveKeys(shape.keys, written, scope, report, `${name}.`);
+      Object.assign(values, inside.values);
+      Object.assign(counts, inside.counts);
+      Object.assign(words, inside.words);
+    } else if (shape.is === "whole" && written.type === "scalar") counts[name] = Number(written.text);
+    else if (shape.is === "choice" && written.type === "scalar") words[name] = written.text;
+  }
+  return { values, counts, words };
 }
 
 /** All values in file order of their sections: the first unit of a dimension is the one to print in. */

@@ -105,15 +105,23 @@ const refused = (says: string): JsonSchema => ({
 /** Properties with their descriptions, those required, and no others. */
 function members(keys: Readonly<Record<string, KeyShape>>): JsonSchema {
   const required = Object.keys(keys).filter((key) => keys[key].required);
+  const needing = Object.keys(keys).filter((key) => keys[key].needs !== undefined);
   return {
     properties: mapValues(keys, member),
     ...(required.length > 0 ? { required } : {}),
+    ...(needing.length > 0
+      ? { dependentRequired: Object.fromEntries(needing.map((key) => [key, [keys[key].needs ?? ""]])) }
+      : {}),
     additionalProperties: false,
   };
 }
 
 function member(key: KeyShape): JsonSchema {
   if (key.later) return refused(key.says);
+  if (key.elsewhere) {
+    const { says, fix } = key.elsewhere;
+    return { description: `${says}: ${fix}.`, not: {}, errorMessage: `${says}.` };
+  }
   const example = key.example === undefined ? undefined : (parse(key.example) as Json);
   return {
     description: key.says,

@@ -14,7 +14,7 @@ export function partial(shape: Shape): Shape {
       const keys: Record<string, KeyShape> = {};
       const kinds = Object.entries(shape.of).filter(([, v]) => !v.later);
       for (const [, variant] of kinds)
-        for (const key in variant.keys) if (!keys[key] || keys[key].later) keys[key] = variant.keys[key];
+        for (const key in variant.keys) if (!keys[key] || isRefused(keys[key])) keys[key] = variant.keys[key];
       keys[shape.by] = { ...keys[shape.by], shape: decidingShape(shape) };
       return { is: "record", keys: partialKeys(keys) };
     }
@@ -28,11 +28,13 @@ export function partial(shape: Shape): Shape {
 function partialKeys(keys: Readonly<Record<string, KeyShape>>): Record<string, KeyShape> {
   const out: Record<string, KeyShape> = {};
   for (const key in keys) {
-    const { required: _, ...rest } = keys[key];
-    out[key] = rest.later ? rest : { ...rest, shape: orNothing(partial(rest.shape)) };
+    const { required: _, needs: __, ...rest } = keys[key];
+    out[key] = isRefused(rest) ? rest : { ...rest, shape: orNothing(partial(rest.shape)) };
   }
   return out;
 }
+
+const isRefused = (key: KeyShape): boolean => key.later === true || key.elsewhere !== undefined;
 
 const orNothing = (shape: Shape): Shape => ({
   is: "either",

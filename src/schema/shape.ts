@@ -4,7 +4,13 @@ import type { DimensionName } from "../units/dimension.js";
 export type Shape =
   | { readonly is: "text" }
   /** A number with a unit or an expression; `dimension` one or several that are right there. */
-  | { readonly is: "quantity"; readonly dimension: DimensionName | readonly DimensionName[] | "any" }
+  | {
+      readonly is: "quantity";
+      readonly dimension: DimensionName | readonly DimensionName[] | "any";
+      /** SI. Held to when the network is balanced, for a value may be made of others. */
+      readonly atLeast?: number;
+      readonly above?: number;
+    }
   | { readonly is: "whole"; readonly atLeast: number; readonly atMost?: number }
   /** `later`: words of the language that this version refuses. */
   | { readonly is: "choice"; readonly of: readonly string[]; readonly later?: readonly string[] }
@@ -58,6 +64,10 @@ export interface KeyShape {
   readonly default?: string;
   /** Part of the language, refused by this version with its place. */
   readonly later?: boolean;
+  /** A key that must stand beside it. */
+  readonly needs?: string;
+  /** Right elsewhere, never here: why, and what to write instead. Refused with its place. */
+  readonly elsewhere?: { readonly says: string; readonly fix: string };
 }
 
 /** The five kinds of document, by the key that begins them. */

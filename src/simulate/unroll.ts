@@ -1,3 +1,4 @@
+import { requireCarried } from "../compile/carried.js";
 import { Part, type Plant } from "../compile/plant.js";
 import { type Adjacency, adjacency } from "../numerics/graph.js";
 import { factor, solve } from "../numerics/lu.js";
@@ -40,8 +41,10 @@ const smallestPass = 1e-12;
 /**
  * @param node    where a unit of tracer is put in: a joint (a feed), a cell, or a tube's inlet end
  * @param horizon s; passes later than this are left out
+ * @throws RefusedError where a body is none of cells, delays and joints
  */
 export function unroll(plant: Plant, node: number, horizon: number): Unrolled {
+  requireCarried(plant);
   const builder = new Unroller(plant, node);
   const truncated = builder.build(horizon);
   return {

@@ -81,10 +81,10 @@ describe("what this version does not honour is refused", () => {
   test.each([
     ["based-on: a.yaml", ["not-yet based-on"]],
     ["basis: mass", ["not-yet basis"]],
-    ["compartments: {a: {kind: dispersed, volume: 1 L, peclet: 3}}", ["not-yet dispersed"]],
+    ["compartments: {a: {kind: zones, volume: 1 L, volumes: 3}}", ["not-yet zones"]],
     ["compartments: {a: {kind: part, use: x.yaml}}", ["not-yet part"]],
-    ["compartments: {a: {kind: stirred, volume: 1 L, to: b, backflow: 3 L/min}}", ["not-yet backflow"]],
-    ["compartments: {a: {kind: stirred, volume: 1 L, to: b, stagnant: {held: 3 L}}}", ["not-yet stagnant"]],
+    ["compartments: {a: {kind: junction, to: b, sends: {x: {b: rest}}}}", ["not-yet sends"]],
+    ["compartments: {a: {kind: stirred, volume: 1 L, to: b, sends: {held: 3 L}}}", ["not-yet sends"]],
     ["parameters: {a: {value: 1, per: trial}}", ["not-yet per"]],
   ])("%s", (text, findings) => {
     expect(network(text).findings).toEqual(findings);
@@ -124,7 +124,7 @@ describe("a change", () => {
     ["outlets: null, constants: {a: null}", []],
     ["parametrs: {}", ["unknown-key parametrs"]],
     ["compartments: {bulk: {volum: 3 L}}", ["unknown-key volum"]],
-    ["compartments: {bulk: {kind: cascade}}", ["not-yet cascade"]],
+    ["compartments: {bulk: {kind: zones}}", ["not-yet zones"]],
     ["parameters: {bypass: {value: [2]}}", ["wrong-shape [2]"]],
     ["basis: mass", ["not-yet basis"]],
     ["parameters: {bypass: }", ["empty-in-change bypass"]],

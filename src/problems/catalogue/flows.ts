@@ -47,6 +47,12 @@ export const flowEntries = {
         ? "an exchange flows both ways, so it has no sign: write it as a flow above zero"
         : "a flow cannot be below zero; look at the values that it is made of, or write the stream the other way round",
   }),
+  "out-of-range": entry<{ name: string; key: string; value: string; limit: string; least: boolean }>({
+    severity: "error",
+    says: ({ name, key, value }) => `the \`${key}\` of '${name}' is ${value}`,
+    fix: ({ limit, least }) =>
+      `it must be ${least ? `at least ${limit}` : `above ${limit}`}; look at the values that it is made of`,
+  }),
   "not-finite": entry<{ what: string; infinite: boolean }>({
     severity: "error",
     says: ({ what, infinite }) => `${what} ${infinite ? "is infinite" : "cannot be computed"}`,
@@ -109,7 +115,7 @@ export const flowEntries = {
   "exchange-partner": entry<{ name: string; partner: string; why: string }>({
     severity: "error",
     says: ({ name, partner, why }) => `'${name}' cannot exchange with '${partner}': ${why}`,
-    fix: "exchange works between two different tanks of `kind: stirred` without `repeat`; write it on one of them",
+    fix: "exchange works between two different single tanks of `kind: stirred`; pockets along a tube or a row of tanks are its `stagnant: {volume: 20 L, exchange: 1 L/min}`",
   }),
   "exchange-twice": entry<{ name: string; partner: string }>({
     severity: "error",

@@ -2,6 +2,13 @@ import { entry } from "../problem.js";
 
 /** What can be wrong with a fit before it runs, and what a reader of its result must know. */
 export const runEntries = {
+  "not-carried": entry({
+    severity: "error",
+    says: (d: { name: string; is: string }) =>
+      `'${d.name}' is ${d.is}, which this version cannot yet follow in time, fit or react`,
+    fix: "use tanks in series (`kind: stirred` with `repeat` and `backflow`) or plain tubes for it until then; `check`, `draw`, mean times and the transfer function take it as it is",
+    example: { name: "core", is: "axial dispersion" },
+  }),
   "unknown-free": entry({
     severity: "error",
     says: (d: { name: string; nearest: string | undefined; names: readonly string[] }) =>

@@ -36,6 +36,11 @@ export const shapeEntries = {
         ? `did you mean \`${d.nearest}\`?`
         : `remove it; what may stand here: ${d.known.map((k) => `\`${k}\``).join(", ")}`,
   }),
+  "not-here": entry<{ says: string; fix: string }>({
+    severity: "error",
+    says: (d) => d.says,
+    fix: (d) => d.fix,
+  }),
   "not-yet": entry<{ what: string }>({
     severity: "error",
     says: (d) => `${d.what} is part of the language, but this version does not honour it yet`,

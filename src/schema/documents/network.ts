@@ -12,17 +12,12 @@ export interface KindKeys {
 
 /** Kinds of the language that this version refuses, unless the kinds table has them. */
 const laterKinds: Record<string, string> = {
-  dispersed: "Flow with axial dispersion.",
-  laminar: "Segregated laminar flow in a round tube.",
-  cascade: "Gamma-distributed residence times: fractional tanks in series.",
   zones: "Many stirred cells from tables.",
   part: "Another network placed here as a part.",
 };
 
 /** Keys of the language that belong to some kind and that this version refuses there. */
 const laterKeys: Record<string, string> = {
-  backflow: "Flow that returns upstream between each two of a repeated tank.",
-  stagnant: "Pockets that exchange with the flow all along the body.",
   sends: "One species that divides otherwise than the liquid.",
 };
 
@@ -39,13 +34,26 @@ const exchange: KeyShape = {
   shape: named(quantity("flow"), "dotted"),
 };
 
-function kindRecord(kind: KindKeys): VariantShape {
+/** `exchange` on a body that has no one well-mixed place to exchange with. */
+const noExchange = (kind: string, stagnant: boolean): KeyShape => ({
+  shape: text,
+  says: "Not on this kind of body.",
+  elsewhere: {
+    says: `\`exchange\` is for single stirred tanks, not for a body of \`kind: ${kind}\``,
+    fix: stagnant
+      ? "write what exchanges with the flow along the body as `stagnant: {volume: 20 L, exchange: 1 L/min}`"
+      : "give the exchange to a body of `kind: stirred` before or behind it",
+  },
+});
+
+function kindRecord(name: string, kind: KindKeys): VariantShape {
   const keys: Record<string, KeyShape> = {
     kind: { shape: text, says: "What sort of body this is.", required: true },
     ...kind.keys,
   };
   if (kind.flows) keys.to = kind.exchanges ? { ...to, required: false } : to;
   if (kind.exchanges) keys.exchange = exchange;
+  else if (kind.flows) keys.exchange = noExchange(name, "stagnant" in kind.keys);
   if (kind.flows) for (const key in laterKeys) if (!(key in keys)) keys[key] = later(laterKeys[key]);
   return { says: kind.says, keys };
 }
@@ -53,7 +61,7 @@ function kindRecord(kind: KindKeys): VariantShape {
 /** Compartments by the value of `kind`. */
 export function compartmentShape(kinds: Readonly<Record<string, KindKeys>>): Shape {
   const of: Record<string, VariantShape> = {};
-  for (const kind in kinds) of[kind] = kindRecord(kinds[kind]);
+  for (const kind in kinds) of[kind] = kindRecord(kind, kinds[kind]);
   for (const kind in laterKinds) of[kind] ??= { says: laterKinds[kind], keys: {}, later: true };
   return { is: "variant", by: "kind", of };
 }

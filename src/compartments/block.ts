@@ -1,0 +1,81 @@
+import type { Algebra } from "../numerics/algebra.js";
+import { type Complex, complex } from "../numerics/complex.js";
+import { type Taylor, taylor, variable } from "../numerics/taylor.js";
+
+/** How a block's liquid mixes on its way, for what its curve alone does not settle: reaction. */
+export type Mixing =
+  | { readonly is: "plug" }
+  | { readonly is: "dispersed"; readonly peclet: number }
+  /** Every parcel stays by itself from inlet to outlet. */
+  | { readonly is: "segregated" };
+
+/** Quiet liquid that exchanges with the flow all along a body: volume held in m3, exchange in m3/s. */
+export interface Pockets {
+  readonly volume: number;
+  readonly exchange: number;
+}
+
+/**
+ * A body that no cells, delays and joints spell out. It is known by what it does to tracer that passes at a steady flow
+ * (m3/s): its transfer function G(s), s in 1/s, G(0) = 1.
+ */
+export interface Block {
+  /** For messages: "axial dispersion". */
+  readonly is: string;
+  readonly mixing: Mixing;
+  /** m3, pockets left out. */
+  readonly volume: number;
+  readonly pockets: Pockets | undefined;
+  readonly transfer: (s: Complex, flow: number) => Complex;
+  /** s: nothing leaves earlier. A curve is smooth behind it once it is taken out. */
+  readonly delay: (flow: number) => number;
+  /** G(s) e^(s delay), without the overflow that the product would have. */
+  readonly undelayed: (s: Complex, flow: number) => Complex;
+  /** Coefficients of G in powers of s, orders 0 to 3; infinite from the order on at which the moments are. */
+  readonly series: (flow: number) => Taylor;
+}
+
+/** Orders of s that moments need: area, mean, variance, third moment. */
+export const orders = 4;
+
+interface Body {
+  readonly is: string;
+  readonly mixing: Mixing;
+  readonly volume: number;
+  readonly pockets: Pockets | undefined;
+  /** G of the dimensionless z = s V/Q, one formula for numbers and series. */
+  readonly response: <T>(z: T, algebra: Algebra<T>) => T;
+}
+
+/**
+ * A block whose transfer function is a formula in z = s V/Q. Pockets come in through z alone: tracer that stays in them along
+ * the way makes z = (s V + s q h / (q + s h)) / Q, h held in them and q exchanged with them.
+ * @see K.H. Coats, B.D. Smith, Soc. Petrol. Eng. J. 4 (1964) 73-84 (from memory)
+ */
+export function formulaBlock({ response, ...body }: Body): Block {
+  const { volume, pockets } = body;
+  const transfer = (s: Complex, flow: number): Complex =>
+    response(complex.add(complex.scale(s, volume / flow), pocketTime(s, complex, pockets, flow)), complex);
+  return {
+    ...body,
+    transfer,
+    delay: () => 0,
+    undelayed: transfer,
+    series: (flow) => {
+      const s = variable(orders);
+      return response(series.add(series.scale(s, volume / flow), pocketTime(s, series, pockets, flow)), series);
+    },
+  };
+}
+
+const series = taylor(orders);
+
+/** What pockets add to s V/Q. */
+export function pocketTime<T>(s: T, algebra: Algebra<T>, pockets: Pockets | undefined, flow: number): T {
+  if (!pockets) return algebra.of(0);
+  const { volume: held, exchange } = pockets;
+  return algebra.divide(
+    algebra.scale(s, (exchange * held) / flow),
+    algebra.add(algebra.of(exchange), algebra.scale(s, held)),
+  );
+}

@@ -1,0 +1,48 @@
+import { cascadeBody } from "../svg/bodies.js";
+import { formulaBlock } from "./block.js";
+import type { CompartmentKind, Ports } from "./kind.js";
+import { heldIn, pocketsOf, stagnantKey, withPockets } from "./stagnant.js";
+
+/** Gamma-distributed residence times: a real number of tanks. B.A. Buffham, L.G. Gibilaro, AIChE J. 14 (1968) 805-806. */
+export const cascade: CompartmentKind = {
+  name: "cascade",
+  says: "Residence times as of `tanks` equal stirred tanks in series, any real number of them. It describes the curve, not the tanks: for reaction it is segregated (every parcel reacts by itself), so that its conversion is not that of `stirred` with `repeat` except at first order.",
+  keys: {
+    volume: {
+      shape: { is: "quantity", dimension: "volume" },
+      required: true,
+      says: "Liquid held in the flow.",
+      example: "500 L",
+    },
+    tanks: {
+      shape: { is: "quantity", dimension: "ratio", atLeast: 1 },
+      required: true,
+      says: "How many tanks in series have this spread of residence times: variance = mean squared over `tanks`. Any real number from 1.",
+      example: "3.4",
+    },
+    stagnant: stagnantKey,
+  },
+  flows: true,
+  exchanges: false,
+  mayExchange: () => false,
+  volume: (of) => of.values.volume + heldIn(of),
+  spell(maker, of): Ports {
+    const { volume, tanks } = of.values;
+    const pockets = pocketsOf(of);
+    const node =
+      volume > 0 || pockets
+        ? maker.block(
+            formulaBlock({
+              is: "a cascade",
+              mixing: { is: "segregated" },
+              volume,
+              pockets,
+              response: (z, { exp, log1p, scale }) => exp(scale(log1p(scale(z, 1 / tanks)), -tanks)),
+            }),
+          )
+        : maker.joint();
+    return { entry: node, exit: node, members: [] };
+  },
+  picture: (box, of) => withPockets(box, of, (inner) => cascadeBody(inner, of.values.tanks)),
+  aspect: () => 4,
+};

@@ -1,0 +1,45 @@
+import { type Complex, complex } from "../numerics/complex.js";
+import { scaledExpint } from "../numerics/expint.js";
+import { laminarBody } from "../svg/bodies.js";
+import type { Block } from "./block.js";
+import type { CompartmentKind, Ports } from "./kind.js";
+
+/** Laminar flow in a round tube. R.C.L. Bosworth, Phil. Mag. 39 (1948) 847-862; Danckwerts, Chem. Eng. Sci. 2 (1953) 1-13. */
+export const laminar: CompartmentKind = {
+  name: "laminar",
+  says: "Laminar flow in a round tube without diffusion: the middle is twice as fast as the mean, the wall stands still, and no layer mixes with another. The mean time is volume over flow; the variance has no end.",
+  keys: {
+    volume: {
+      shape: { is: "quantity", dimension: "volume" },
+      required: true,
+      says: "Liquid held.",
+      example: "50 L",
+    },
+  },
+  flows: true,
+  exchanges: false,
+  mayExchange: () => false,
+  volume: ({ values }) => values.volume,
+  spell(maker, { values }): Ports {
+    const node = values.volume > 0 ? maker.block(laminarTube(values.volume)) : maker.joint();
+    return { entry: node, exit: node, members: [] };
+  },
+  picture: (box) => laminarBody(box),
+  aspect: () => 4,
+};
+
+/** G = 2 E3(s tau/2): nothing leaves before tau/2, then E = tau^2 / (2 t^3). */
+function laminarTube(volume: number): Block {
+  const undelayed = (s: Complex, flow: number): Complex =>
+    complex.scale(scaledExpint(3, complex.scale(s, volume / flow / 2)), 2);
+  return {
+    is: "laminar flow",
+    mixing: { is: "segregated" },
+    volume,
+    pockets: undefined,
+    delay: (flow) => volume / flow / 2,
+    undelayed,
+    transfer: (s, flow) => complex.multiply(complex.exp(complex.scale(s, -volume / flow / 2)), undelayed(s, flow)),
+    series: (flow) => Float64Array.of(1, -volume / flow, Number.POSITIVE_INFINITY, Number.NEGATIVE_INFINITY),
+  };
+}

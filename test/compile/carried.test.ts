@@ -1,0 +1,42 @@
+import { describe, expect, test } from "vitest";
+import { uncarried } from "../../src/compile/carried.js";
+import { RefusedError } from "../../src/problems/refused.js";
+import { steadyState } from "../../src/reaction/steady.js";
+import { tracerResponse } from "../../src/simulate/tracer.js";
+import { plantOf } from "../simulate/plants.js";
+import { vessel } from "../transfer/vessel.js";
+
+const blocks = {
+  "axial dispersion": "dispersed, volume: 5 L, peclet: 4",
+  "laminar flow": "laminar, volume: 5 L",
+  "a cascade": "cascade, volume: 5 L, tanks: 3",
+  "plug flow past stagnant pockets": "tubular, volume: 5 L, stagnant: {volume: 1 L, exchange: 1 L/min}",
+};
+
+describe.each(Object.entries(blocks))("%s", (is, keys) => {
+  const plant = plantOf(vessel(`  a: {kind: ${keys}, to: out}`));
+
+  test("is refused by the engines with its name and place", () => {
+    const [problem] = uncarried(plant);
+    expect(problem).toMatchObject({ code: "not-carried", severity: "error" });
+    expect(problem.message).toBe(`'a' is ${is}, which this version cannot yet follow in time, fit or react`);
+    expect(problem.at.source.text.slice(problem.at.from)).toMatch(/^a: /);
+    expect(() => tracerResponse(plant, { at: "in", form: "pulse" }, [0, 60])).toThrow(RefusedError);
+    const duty = { feeds: new Map(), flows: new Map(), settings: new Map(), report: [] };
+    expect(() => steadyState(plant, undefined, duty as unknown as Parameters<typeof steadyState>[2])).toThrow(
+      RefusedError,
+    );
+  });
+});
+
+test("what cells, tubes and joints can spell is carried, pockets without volume or exchange too", () => {
+  const plant = plantOf(
+    vessel(`  a: {kind: tubular, volume: 5 L, stagnant: {volume: 0 L, exchange: 1 L/min}, to: b}
+  b: {kind: stirred, repeat: 3, backflow: 1 L/min, volume: 3 L, stagnant: {volume: 1 L, exchange: 1 L/min}, to: c}
+  c: {kind: tubular, volume: 5 L, stagnant: {volume: 2 L, exchange: 0 L/min}, to: d}
+  d: {kind: laminar, volume: 0 L, to: out}`),
+  );
+  expect(uncarried(plant)).toEqual([]);
+  expect(plant.volume.total).toBeCloseTo(0.016, 15);
+  expect(plant.volume.dead).toBeCloseTo(0.002, 15);
+});
