@@ -27,7 +27,8 @@ export const streamTargets: Rule = (network, report, { nearest }) => {
         const into = feed.streams.length === 1 ? feed.streams[0].to : undefined;
         report("into-feed", s.at, { name: s.to, from: node.name, enters: into });
       } else if (!bodies.has(s.to) && !outlets.has(s.to)) {
-        const known = [...bodies.keys(), ...outlets];
+        const inlets = network.compartments.flatMap((c) => c.zones?.inlets.map((t) => `${c.name}.${t.name}`) ?? []);
+        const known = [...bodies.keys(), ...inlets, ...outlets];
         report("unknown-place", s.at, {
           name: s.to,
           wanted: "compartment or outlet",
@@ -40,10 +41,10 @@ export const streamTargets: Rule = (network, report, { nearest }) => {
   }
 };
 
-/** Constants and parameters that nothing uses. */
+/** Constants and parameters that nothing uses. Those of a part are for its own file to answer for. */
 export const unusedNames: Rule = (network, report) => {
   for (const n of network.names) {
-    if (n.role !== "feed-flow" && !network.used.has(n.name))
-      report("unused-name", n.at, { name: n.name, role: n.role });
+    if (n.role === "feed-flow" || n.role === "inflow" || n.name.includes(".") || network.used.has(n.name)) continue;
+    report("unused-name", n.at, { name: n.name, role: n.role });
   }
 };

@@ -1,6 +1,7 @@
 import type { KeyShape } from "../schema/shape.js";
 import type { Box, Svg } from "../svg/svg.js";
 import type { Block } from "./block.js";
+import type { ZoneNames, ZoneTable } from "./zone-table.js";
 
 /** What a compartment's keys say, evaluated. A key inside a key has both names: `stagnant.volume`. */
 export interface KindValues {
@@ -12,6 +13,8 @@ export interface KindValues {
   readonly words: Readonly<Record<string, string>>;
   /** Keys of `values` that are plain numbers: shares, where a flow might stand too. */
   readonly shares: ReadonlySet<string>;
+  /** Cells and flows of a kind that reads them from tables. */
+  readonly zones?: ZoneTable | undefined;
 }
 
 /** Everything that one kind of compartment is. One kind, one file, one line in `kinds`. */
@@ -26,8 +29,12 @@ export interface CompartmentKind {
   /** May any of this kind have `exchange:`, and may this very one? */
   readonly exchanges: boolean;
   readonly mayExchange: (counts: Readonly<Record<string, number>>) => boolean;
+  /** Are its cells and flows read from tables? */
+  readonly zoned?: true;
+  /** Is it a document of its own, placed here? It is resolved into the bodies that it has, so that no engine meets it. */
+  readonly placed?: true;
   /** Liquid held, pockets included, m3. */
-  readonly volume: (of: Pick<KindValues, "values" | "counts">) => number;
+  readonly volume: (of: Pick<KindValues, "values" | "counts" | "zones">) => number;
   /** Spells the compartment out in primitive nodes; returns where streams enter and leave (undefined: not in the balance). */
   spell(maker: NodeMaker, of: KindValues): Ports | undefined;
   /** Its picture inside a box whose area stands for the volume. */
@@ -38,9 +45,18 @@ export interface CompartmentKind {
 
 /** Where streams enter and leave a spelled-out compartment, and its members by their suffix ("1", "2"; none for one). */
 export interface Ports {
-  readonly entry: number;
-  readonly exit: number;
-  readonly members: readonly { readonly suffix: string; readonly node: number }[];
+  /** Undefined where streams have several ways in, or out: then they go by `inlets`, or `outlets`. */
+  readonly entry: number | undefined;
+  readonly exit: number | undefined;
+  readonly members: readonly Member[];
+  readonly inlets?: readonly Member[];
+  readonly outlets?: readonly Member[];
+}
+
+/** A node known by the compartment's name, a dot and a suffix. */
+export interface Member {
+  readonly suffix: string;
+  readonly node: number;
 }
 
 /** Makes primitive nodes and links between them. */
@@ -49,10 +65,14 @@ export interface NodeMaker {
   readonly through: number;
   cell(volume: number, suffix?: string): number;
   delay(volume: number): number;
-  joint(): number;
+  joint(suffix?: string): number;
   block(block: Block): number;
   /** All of the through-flow that leaves the first enters the second. */
   chain(from: number, to: number): void;
   /** A flow both ways between two nodes, m3/s, on top of the through-flow. */
   exchange(a: number, b: number, flow: number): void;
+  /** Many cells at once, known by the names of a table; returns the first. Those without volume are joints. */
+  cells(volume: Float64Array, names: ZoneNames): number;
+  /** Many flows at once, m3/s. */
+  links(from: Int32Array, to: Int32Array, flow: Float64Array): void;
 }

@@ -1,13 +1,13 @@
-import type { Block } from "../compartments/block.js";
-import type { NodeMaker } from "../compartments/kind.js";
+import type { Member, NodeMaker } from "../compartments/kind.js";
 import type { Network } from "../model/network.js";
 import { kindValues } from "./evaluate.js";
 import type { Flows } from "./flows.js";
-import { Part, type PlantNode } from "./plant.js";
+import { LinkList, NodeList, Places } from "./node-list.js";
+import { Part } from "./plant.js";
 
 /** Primitive nodes and the links between them, before totals are known. */
 export interface Spelled {
-  readonly nodes: readonly Omit<PlantNode, "inflow">[];
+  readonly nodes: NodeList;
   readonly from: Int32Array;
   readonly to: Int32Array;
   readonly flow: Float64Array;
@@ -17,25 +17,17 @@ export interface Spelled {
 
 /** Lets every kind spell its compartments out; then lays streams and exchanges between them. */
 export function spellOut(network: Network, env: Float64Array, flows: Flows): Spelled {
-  const nodes: Omit<PlantNode, "inflow">[] = [];
-  const from: number[] = [];
-  const to: number[] = [];
-  const flow: number[] = [];
-  const entry = new Map<string, number>();
-  const exit = new Map<string, number>();
-  const link = (a: number, b: number, q: number) => {
-    from.push(a);
-    to.push(b);
-    flow.push(q);
-  };
+  const nodes = new NodeList();
+  const links = new LinkList();
+  const entry = new Places(nodes);
+  const exit = new Places(nodes);
+  const link = (a: number, b: number, q: number) => links.add(a, b, q);
   const exchange = (a: number, b: number, q: number) => {
     link(a, b, q);
     link(b, a, q);
   };
-  const add = (name: string, part: PlantNode["part"], volume: number, block?: Block) =>
-    nodes.push({ name, part, volume, ...(block ? { block } : {}) }) - 1;
   const joint = (name: string) => {
-    const node = add(name, Part.Joint, 0);
+    const node = nodes.add(name, Part.Joint, 0);
     entry.set(name, node);
     exit.set(name, node);
   };
@@ -45,29 +37,43 @@ export function spellOut(network: Network, env: Float64Array, flows: Flows): Spe
     const full = (suffix = "") => (suffix ? `${c.name}.${suffix}` : c.name);
     const maker: NodeMaker = {
       through,
-      cell: (volume, suffix) => add(full(suffix), Part.Cell, volume),
-      delay: (volume) => add(c.name, Part.Delay, volume),
-      joint: () => add(c.name, Part.Joint, 0),
-      block: (block) => add(c.name, Part.Block, block.volume + (block.pockets?.volume ?? 0), block),
+      cell: (volume, suffix) => nodes.add(full(suffix), Part.Cell, volume),
+      delay: (volume) => nodes.add(c.name, Part.Delay, volume),
+      joint: (suffix) => nodes.add(full(suffix), Part.Joint, 0),
+      block: (block) => nodes.add(c.name, Part.Block, block.volume + (block.pockets?.volume ?? 0), block),
       chain: (a, b) => link(a, b, through),
       exchange,
+      cells: (volume, names) => nodes.addCells(volume, `${c.name}.`, names),
+      links: (a, b, q) => links.addAll(a, b, q),
     };
-    const ports = c.kind.spell(maker, kindValues(c, env));
+    const ports = c.kind.spell(maker, { ...kindValues(c, env), zones: flows.zoned.get(i) });
     if (!ports) return;
-    entry.set(c.name, ports.entry);
-    exit.set(c.name, ports.exit);
-    for (const m of ports.members) {
-      entry.set(full(m.suffix), m.node);
-      exit.set(full(m.suffix), m.node);
-    }
+    const know = (places: Places, members: readonly Member[] = []) => {
+      for (const m of members) places.set(full(m.suffix), m.node);
+    };
+    if (ports.entry !== undefined) entry.set(c.name, ports.entry);
+    if (ports.exit !== undefined) exit.set(c.name, ports.exit);
+    know(entry, ports.members);
+    know(exit, ports.members);
+    know(entry, ports.inlets);
+    know(exit, ports.outlets);
   });
   for (const o of network.outlets) joint(o.name);
   const names = [...network.feeds, ...network.compartments, ...network.outlets].map((p) => p.name);
-  for (const s of flows.streams) link(exit.get(names[s.from]) as number, entry.get(names[s.to]) as number, s.flow);
+  const port = (name: string, terminal: string | undefined) => (terminal === undefined ? name : `${name}.${terminal}`);
+  for (const { from, to, flow, stream } of flows.streams) {
+    const a = exit.get(port(names[from], stream.leaves)) as number;
+    link(a, entry.get(port(names[to], stream.enters)) as number, flow);
+  }
   for (const c of network.compartments) {
     for (const e of c.exchanges) {
       exchange(exit.get(c.name) as number, exit.get(e.partner) as number, e.flow.of(env));
     }
   }
-  return { nodes, from: Int32Array.from(from), to: Int32Array.from(to), flow: Float64Array.from(flow), entry, exit };
+  for (const { name, inlets, outlets } of network.groups) {
+    const [way, out] = [entry.get(inlets[0]), exit.get(outlets[0])];
+    if (inlets.length === 1 && way !== undefined) entry.set(name, way);
+    if (outlets.length === 1 && out !== undefined) exit.set(name, out);
+  }
+  return { nodes, ...links.columns, entry, exit };
 }

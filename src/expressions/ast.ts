@@ -59,6 +59,22 @@ export function namesIn(e: Expression): readonly string[] {
   return [...found];
 }
 
+/** The same expression over other names; known constants keep theirs. */
+export function renamed(e: Expression, name: (name: string) => string): Expression {
+  switch (e.type) {
+    case "number":
+      return e;
+    case "name":
+      return knownConstants.has(e.name) ? e : { ...e, name: name(e.name) };
+    case "negate":
+      return { ...e, of: renamed(e.of, name) };
+    case "binary":
+      return { ...e, left: renamed(e.left, name), right: renamed(e.right, name) };
+    case "call":
+      return { ...e, args: e.args.map((arg) => renamed(arg, name)) };
+  }
+}
+
 /** The unit first written in an expression; bare numbers have none. */
 export function firstUnit(e: Expression): Unit | undefined {
   let first: Unit | undefined;

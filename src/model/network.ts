@@ -1,4 +1,5 @@
 import type { CompartmentKind } from "../compartments/kind.js";
+import type { ZoneTable } from "../compartments/zone-table.js";
 import type { Span } from "../text/source.js";
 import type { Unit } from "../units/unit.js";
 import type { Value } from "./value.js";
@@ -16,6 +17,8 @@ export interface Network {
   readonly feeds: readonly Feed[];
   readonly compartments: readonly Compartment[];
   readonly outlets: readonly Outlet[];
+  /** Parts, whose bodies stand among the compartments; outer ones first. */
+  readonly groups: readonly Group[];
   readonly requires: readonly Requirement[];
   readonly checks: readonly Check[];
   /** Every name that some value, bound or requirement uses. */
@@ -28,7 +31,8 @@ export interface Network {
 export interface Named {
   readonly name: string;
   readonly slot: number;
-  readonly role: "constant" | "parameter" | "feed-flow";
+  /** `inflow`: what streams bring to a feed of a part, which nobody sets. */
+  readonly role: "constant" | "parameter" | "feed-flow" | "inflow";
   readonly at: Span;
   readonly value: Value;
   readonly between: readonly [Value, Value] | undefined;
@@ -55,6 +59,8 @@ export interface Compartment {
   readonly counts: Readonly<Record<string, number>>;
   /** Choices of the kind (`ends`). */
   readonly words: Readonly<Record<string, string>>;
+  /** Cells and flows of a kind that reads them from tables. */
+  readonly zones?: ZoneTable | undefined;
   readonly streams: readonly Stream[];
   readonly exchanges: readonly Exchange[];
   readonly toAt: Span;
@@ -65,11 +71,28 @@ export interface Outlet {
   readonly at: Span;
 }
 
+/** A part, or one of its repeats (`core.2`): bodies that were described together in a file of their own. */
+export interface Group {
+  /** Where one inlet or outlet is, the name alone stands for it. */
+  readonly name: string;
+  readonly at: Span;
+  readonly title: string;
+  readonly path: string;
+  /** Names of its compartments, those of parts inside it too. */
+  readonly members: readonly string[];
+  /** Its ports are junctions among its members. */
+  readonly inlets: readonly string[];
+  readonly outlets: readonly string[];
+}
+
 /** One branch of a `to:`. Exactly one of the three ways to say how much. */
 export interface Stream {
   readonly to: string;
   readonly at: Span;
   readonly split: { readonly is: "share" | "flow"; readonly value: Value } | { readonly is: "rest" | "all" };
+  /** The inlet by which it enters a body that has several, and the outlet by which it leaves one. */
+  readonly enters?: string | undefined;
+  readonly leaves?: string | undefined;
 }
 
 /** Equal flow both ways between a compartment and a partner. */

@@ -9,6 +9,7 @@ import { shapeEntries } from "./catalogue/shape.js";
 import { studyEntries } from "./catalogue/study.js";
 import { valueEntries } from "./catalogue/values.js";
 import { yamlEntries } from "./catalogue/yaml.js";
+import { zoneEntries } from "./catalogue/zones.js";
 
 /** The catalogue by what its problems are about, as the manual has it. */
 export const catalogueGroups = {
@@ -17,6 +18,7 @@ export const catalogueGroups = {
   "Values, units, expressions": valueEntries,
   Names: nameEntries,
   "Streams, flows, volumes": flowEntries,
+  "Zones and their tables": zoneEntries,
   "Parts and variants": reuseEntries,
   "Trials and their tables": dataEntries,
   "Chemistries and duties": chemistryEntries,
@@ -32,6 +34,7 @@ export const catalogue = {
   ...valueEntries,
   ...nameEntries,
   ...flowEntries,
+  ...zoneEntries,
   ...reuseEntries,
   ...dataEntries,
   ...chemistryEntries,

@@ -7,8 +7,8 @@ import type { Report } from "../problems/report.js";
 import { collector } from "../problems/report.js";
 import { child, type Entry, entriesOf, type Tree } from "../read/tree.js";
 import { type Dimension, dimensions } from "../units/dimension.js";
+import { checkName } from "./check-name.js";
 import { dependencyOrder } from "./dependency-order.js";
-import { checkName } from "./names.js";
 import { resolveValue, type Scope, writtenValue } from "./value.js";
 
 /** R, J/(mol K). */

@@ -1,117 +1,76 @@
-import { kinds } from "../compartments/index.js";
-import type { Compartment, Feed, Network, Outlet } from "../model/network.js";
+import type { Compartment, Feed, Network } from "../model/network.js";
 import type { Value } from "../model/value.js";
 import type { Report } from "../problems/report.js";
-import { child, entriesOf, itemsOf, type MapNode, type Tree, textOf } from "../read/tree.js";
-import type { KeyShape } from "../schema/shape.js";
+import type { Files } from "../read/files.js";
+import { child, type MapNode, textOf } from "../read/tree.js";
 import { resolveChecks } from "./checks.js";
-import { checkName, dimensionsOf, resolveNames } from "./names.js";
+import { dependencyOrder } from "./dependency-order.js";
+import { inflowsOf } from "./inflow.js";
+import { type LocalNetwork, resolveLocal } from "./local.js";
+import { resolveNames } from "./names.js";
+import { allInstances, type Instance, openParts } from "./part.js";
+import { placeAll } from "./place.js";
 import { resolveRequirements } from "./requirements.js";
-import { resolveExchanges, resolveStreams } from "./streams.js";
 import { unitBook } from "./unit-book.js";
-import { resolveValue, type Scope } from "./value.js";
 
 /**
- * Binds every name and value of a network document. Problems go to `report`; what could not be bound is left out, so
- * the result is to be used further only where no error was reported.
+ * Binds every name and value of a network document and of the parts in it. Problems go to `report`; what could not be
+ * bound is left out, so the result is to be used further only where no error was reported.
  * @param tree a document that has passed the shape check
  */
-export function resolveNetwork(tree: MapNode, path: string, report: Report): Network {
-  const { names, order, scope } = resolveNames(tree, report);
-  const feeds = entriesOf(child(tree, "feeds")).flatMap(({ key, value }): Feed[] => {
-    checkName(key, report);
-    const named = names.find((n) => n.role === "feed-flow" && n.name === `${key.text}.flow`);
-    const streams = resolveStreams(child(value, "to"), scope, report);
-    if (!named) return [];
-    const toAt = child(value, "to")?.at ?? key.at;
-    return [{ name: key.text, at: key.at, flow: named.value, flowSlot: named.slot, streams, toAt }];
-  });
-  const compartments = entriesOf(child(tree, "compartments")).flatMap(({ key, value }) => {
-    checkName(key, report);
-    return value.type === "map" ? (resolveCompartment(key.text, key.at, value, scope, report) ?? []) : [];
-  });
-  const outlets = itemsOf(child(tree, "outlets")).flatMap((item): Outlet[] => {
-    if (item.type !== "scalar") return [];
-    checkName(item, report);
-    return [{ name: item.text, at: item.at }];
-  });
-  const { requires, requireNames } = resolveRequirements(child(tree, "requires"), scope, report);
-  const { checks, checkNames } = resolveChecks(child(tree, "checks"), scope, report);
-  const title = child(tree, "network");
+export function resolveNetwork(tree: MapNode, path: string, report: Report, files: Files = noFiles): Network {
+  const root = openParts(tree, files, report);
+  const instances = allInstances(root);
+  const { names: declared, inflows, needs, slots, scope } = resolveNames(instances, report);
+  const env = valuesOfNames(declared, dependencyOrder(needs).order);
+  const locals = new Map<Instance, LocalNetwork>();
+  for (const instance of instances) {
+    const flows = declared.filter((n) => n.role === "feed-flow" && instance === root);
+    locals.set(instance, resolveLocal(instance, flows, scope(instance.prefix), env, files, report));
+  }
+  const { feeds, compartments, outlets, groups } = placeAll(root, locals);
+  const requires = instances.map((i) => resolveRequirements(child(i.tree, "requires"), scope(i.prefix), report));
+  const { checks, checkNames } = resolveChecks(child(tree, "checks"), scope(""), report);
   const values = valuesOf(
     feeds,
-    names.map((n) => n.value),
+    declared.map((n) => n.value),
     compartments,
   );
+  const used = new Set([
+    ...[...values, ...declared.flatMap((n) => n.between ?? [])].flatMap((v) => v.uses),
+    ...requires.flatMap((r) => r.requireNames),
+    ...checkNames,
+  ]);
+  const wanted = inflows.filter((d) => used.has(d.name));
+  const found = inflowsOf(wanted, { feeds, compartments, groups }, slots, needs, report);
+  const names = [...declared, ...found.names];
+  const known = new Set(names.map((n) => n.slot));
   return {
     title: textOf(tree, "network") ?? "",
-    at: title?.at ?? tree.at,
+    at: child(tree, "network")?.at ?? tree.at,
     path,
     notes: textOf(tree, "notes"),
     names,
-    order,
+    order: found.order.filter((slot) => known.has(slot)),
     feeds,
     compartments,
     outlets,
-    requires,
+    groups,
+    requires: requires.flatMap((r) => r.requires),
     checks,
-    used: new Set(
-      [...values, ...names.flatMap((n) => n.between ?? [])].flatMap((v) => v.uses).concat(requireNames, checkNames),
-    ),
-    units: unitBook(values, feeds[0]?.flow),
+    used,
+    units: unitBook([...values, ...compartments.flatMap((c) => c.zones?.units ?? [])], feeds[0]?.flow),
   };
 }
 
-function resolveCompartment(
-  name: string,
-  at: Compartment["at"],
-  node: MapNode,
-  scope: Scope,
-  report: Report,
-): Compartment | undefined {
-  const kindName = textOf(node, "kind") ?? "";
-  const kind = Object.hasOwn(kinds, kindName) ? kinds[kindName] : undefined;
-  if (!kind) return undefined; // the shape check has said so
-  return {
-    name,
-    at,
-    kind,
-    ...resolveKeys(kind.keys, node, scope, report),
-    streams: resolveStreams(child(node, "to"), scope, report),
-    exchanges: resolveExchanges(child(node, "exchange"), scope, report),
-    toAt: child(node, "to")?.at ?? at,
-  };
-}
+const noFiles: Files = { read: () => undefined };
 
-type Keys = Pick<Compartment, "values" | "counts" | "words">;
-
-/** The keys of a kind by their declaration; those inside a key are named by both. */
-function resolveKeys(
-  keys: Readonly<Record<string, KeyShape>>,
-  node: Tree | undefined,
-  scope: Scope,
-  report: Report,
-  within = "",
-): Keys {
-  const values: Record<string, Value> = {};
-  const counts: Record<string, number> = {};
-  const words: Record<string, string> = {};
-  for (const [key, { shape }] of Object.entries(keys)) {
-    const written = child(node, key);
-    if (!written) continue;
-    const name = within + key;
-    if (shape.is === "quantity") {
-      const value = resolveValue(written, dimensionsOf(shape.dimension), scope, report);
-      if (value) values[name] = value;
-    } else if (shape.is === "record") {
-      const inside = resolveKeys(shape.keys, written, scope, report, `${name}.`);
-      Object.assign(values, inside.values);
-      Object.assign(counts, inside.counts);
-      Object.assign(words, inside.words);
-    } else if (shape.is === "whole" && written.type === "scalar") counts[name] = Number(written.text);
-    else if (shape.is === "choice" && written.type === "scalar") words[name] = written.text;
-  }
-  return { values, counts, words };
+/** At the file's own values. */
+function valuesOfNames(names: Network["names"], order: readonly number[]): Float64Array {
+  const env = new Float64Array(names.reduce((size, n) => Math.max(size, n.slot + 1), 0));
+  const bySlot = new Map(names.map((n) => [n.slot, n]));
+  for (const slot of order) env[slot] = bySlot.get(slot)?.value.of(env) ?? Number.NaN;
+  return env;
 }
 
 /** All values in file order of their sections: the first unit of a dimension is the one to print in. */

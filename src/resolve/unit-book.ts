@@ -19,7 +19,7 @@ const usual: Unit[] = ["%", "L", "L/min", "g", "g/L", "mol/L", "mol", "min", "1/
  * @param values in file order
  * @param flow   the value whose unit tells the unit of time (the first feed's flow)
  */
-export function unitBook(values: readonly (Value | undefined)[], flow: Value | undefined): UnitBook {
+export function unitBook(values: readonly (Pick<Value, "unit"> | undefined)[], flow: Value | undefined): UnitBook {
   const book = new Map<string, Unit>();
   for (const v of values) {
     if (v?.unit && !book.has(dimensionKey(v.unit.dimension))) book.set(dimensionKey(v.unit.dimension), v.unit);

@@ -1,4 +1,4 @@
-import { type Expression, namesIn, type Uncertainty, visit, type WrittenValue } from "../expressions/ast.js";
+import { type Expression, namesIn, renamed, type Uncertainty, visit, type WrittenValue } from "../expressions/ast.js";
 import { compileExpression } from "../expressions/compile.js";
 import { dimensionOf, scalePoints } from "../expressions/dimension-of.js";
 import { type Fault, isFault } from "../expressions/fault.js";
@@ -22,6 +22,8 @@ export interface Scope {
   slot(name: string): number | undefined;
   dimension(name: string): Dimension | undefined;
   names(): readonly string[];
+  /** What a name is called from outside, where the document is a part of another: `core.tanks` for its own `tanks`. */
+  readonly whole?: (name: string) => string;
 }
 
 /** Where nothing but numbers may stand. */
@@ -72,12 +74,13 @@ export function bindValue(
   const fault = uncertainty && spreadFault(uncertainty, dimension);
   if (fault) return reportFault(node, fault, report);
   const of = compileExpression(expression, (name) => scope.slot(name));
+  const whole = scope.whole ? renamed(expression, scope.whole) : expression;
   return {
     at: node.at,
     dimension,
     unit: unitFor(expression, dimension),
-    expression,
-    uses: namesIn(expression),
+    expression: whole,
+    uses: namesIn(whole),
     of,
     sd: uncertainty && spreadOf(uncertainty, of),
   };

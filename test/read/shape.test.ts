@@ -79,10 +79,8 @@ describe("one finding a place, at the place", () => {
 
 describe("what this version does not honour is refused", () => {
   test.each([
-    ["based-on: a.yaml", ["not-yet based-on"]],
     ["basis: mass", ["not-yet basis"]],
     ["compartments: {a: {kind: zones, volume: 1 L, volumes: 3}}", ["not-yet zones"]],
-    ["compartments: {a: {kind: part, use: x.yaml}}", ["not-yet part"]],
     ["compartments: {a: {kind: junction, to: b, sends: {x: {b: rest}}}}", ["not-yet sends"]],
     ["compartments: {a: {kind: stirred, volume: 1 L, to: b, sends: {held: 3 L}}}", ["not-yet sends"]],
     ["parameters: {a: {value: 1, per: trial}}", ["not-yet per"]],

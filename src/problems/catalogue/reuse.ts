@@ -76,6 +76,13 @@ export const reuseEntries = {
     says: ({ part, outlet }) => `the outlet '${outlet}' of the part '${part}' goes nowhere`,
     fix: ({ outlet }) => `say under \`to:\` where it goes, such as \`${outlet}: product\``,
   }),
+  "not-a-place": entry<{ outlet: string; text: string }>({
+    severity: "error",
+    says: ({ text }) =>
+      `the \`to:\` of a part tells where each of its outlets leads, and ${quoted([text])} is no place`,
+    fix: ({ outlet }) =>
+      `name one place, such as \`${outlet}: product\`, or divide it: \`${outlet}: {loop: 30 %, product: rest}\``,
+  }),
   "repeat-ports": entry<{ part: string; inlets: number; outlets: number }>({
     severity: "error",
     says: ({ part, inlets, outlets }) =>

@@ -1,6 +1,6 @@
-import { partial } from "../partial.js";
 import type { KeyShape, RecordShape, Shape, VariantShape } from "../shape.js";
 import { choice, either, heading, later, list, name, named, quantity, record, text } from "./common.js";
+import { orVariant } from "./variant.js";
 
 /** What the schema needs to know of a kind of compartment; the kinds table has more. */
 export interface KindKeys {
@@ -12,8 +12,6 @@ export interface KindKeys {
 
 /** Kinds of the language that this version refuses, unless the kinds table has them. */
 const laterKinds: Record<string, string> = {
-  zones: "Many stirred cells from tables.",
-  part: "Another network placed here as a part.",
 };
 
 /** Keys of the language that belong to some kind and that this version refuses there. */
@@ -51,7 +49,7 @@ function kindRecord(name: string, kind: KindKeys): VariantShape {
     kind: { shape: text, says: "What sort of body this is.", required: true },
     ...kind.keys,
   };
-  if (kind.flows) keys.to = kind.exchanges ? { ...to, required: false } : to;
+  if (kind.flows && !kind.keys.to) keys.to = kind.exchanges ? { ...to, required: false } : to;
   if (kind.exchanges) keys.exchange = exchange;
   else if (kind.flows) keys.exchange = noExchange(name, "stagnant" in kind.keys);
   if (kind.flows) for (const key in laterKeys) if (!(key in keys)) keys[key] = later(laterKeys[key]);
@@ -183,28 +181,13 @@ function wholeNetwork(kinds: Readonly<Record<string, KindKeys>>): RecordShape {
     },
     outlets: { shape: list(name), says: "Names where flow leaves the network.", example: "[product]" },
     checks,
-    "based-on": later("The network that this one is a variant of."),
     basis: later("Hold-ups in kg and flows in kg/h."),
   });
 }
 
 /**
- * A network, or a change to one (`change:` and no more, which a study applies to each rival).
+ * A network, a variant of one, or a change alone (`change:` and no base), which a study applies to each rival.
  * @param kinds the table of compartment kinds; kinds of the language that it lacks are refused as not in this version
  */
-export function networkShape(kinds: Readonly<Record<string, KindKeys>>): Shape {
-  const whole = wholeNetwork(kinds);
-  const { network, format, notes, ...rest } = whole.keys;
-  const change: KeyShape = {
-    shape: partial(record(rest)),
-    says: "What is different: merged into the network key by key. `null` removes; lists and `to` are replaced whole; a changed `kind` replaces the compartment.",
-    required: true,
-    example: "{parameters: {bypass: {value: 2 %}}}",
-  };
-  return {
-    is: "depends",
-    on: "change",
-    present: record({ network, format, notes, change, "based-on": whole.keys["based-on"] }),
-    absent: whole,
-  };
-}
+export const networkShape = (kinds: Readonly<Record<string, KindKeys>>): Shape =>
+  orVariant("network", wholeNetwork(kinds), true);

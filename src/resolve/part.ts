@@ -1,0 +1,121 @@
+import { kinds } from "../compartments/index.js";
+import type { Report } from "../problems/report.js";
+import type { Files } from "../read/files.js";
+import { checkShape } from "../read/shape.js";
+import { child, entriesOf, itemsOf, type MapNode, type ScalarNode, type Tree, textOf } from "../read/tree.js";
+import type { Span } from "../text/source.js";
+import { wholeDocument } from "./based-on.js";
+import { openNamed } from "./named-file.js";
+
+/** A network document in its place: the one that was asked for, or one that stands in it as a part. */
+export interface Instance {
+  /** Stands before the names of its values: empty for the document itself, `core.` for its part `core`. */
+  readonly prefix: string;
+  readonly tree: MapNode;
+  /** Values that those outside give to its names, by whole name. */
+  readonly bindings: ReadonlyMap<string, Binding>;
+  readonly parts: ReadonlyMap<string, Part>;
+}
+
+/** A line of a `with:`. */
+export interface Binding {
+  readonly key: ScalarNode;
+  readonly value: Tree;
+  /** The part that it is written at, and the prefix of the document that it is written in. */
+  readonly part: string;
+  readonly prefix: string;
+}
+
+/** A compartment that is another network. */
+export interface Part {
+  readonly name: string;
+  readonly at: Span;
+  readonly node: MapNode;
+  readonly repeat: number;
+  readonly inlets: readonly string[];
+  readonly outlets: readonly string[];
+  readonly instance: Instance;
+}
+
+/** Parts and their repeats may come to so many bodies; so many files may be opened for one network. */
+const mostBodies = 100_000;
+const mostFiles = 1000;
+
+/** Opens the parts of a network, and theirs. A part that cannot be used is reported and left out. */
+export function openParts(tree: MapNode, files: Files, report: Report): Instance {
+  const opened = { files: 0 };
+  const root = open(tree, "", new Map(), files, report, opened);
+  if (bodiesOf(root) > mostBodies || opened.files > mostFiles) {
+    report("too-many-bodies", child(tree, "compartments")?.at ?? tree.at, { limit: mostBodies });
+    return { ...root, parts: new Map() };
+  }
+  return root;
+}
+
+function open(
+  tree: MapNode,
+  prefix: string,
+  bindings: ReadonlyMap<string, Binding>,
+  files: Files,
+  report: Report,
+  opened: { files: number },
+): Instance {
+  const parts = new Map<string, Part>();
+  for (const { key, value: node } of entriesOf(child(tree, "compartments"))) {
+    if (node.type !== "map" || !isPart(node)) continue;
+    const use = child(node, "use");
+    if (use?.type !== "scalar" || ++opened.files > mostFiles) continue;
+    const inner = openNamed(use, "part", files, report);
+    const whole = inner && checkShape(inner, "network", report) && wholeDocument(inner, "network", files, report);
+    if (!whole) continue;
+    const change = whole.entries.find((e) => e.key.text === "change");
+    if (change) {
+      report("change-only", change.key.at, { title: textOf(whole, "network") ?? "" });
+      continue;
+    }
+    const within = `${prefix}${key.text}.`;
+    const bound = bindingsOf(node, prefix, key.text, bindings);
+    const inlets = entriesOf(child(whole, "feeds")).map((e) => e.key.text);
+    const outlets = itemsOf(child(whole, "outlets")).flatMap((o) => (o.type === "scalar" ? [o.text] : []));
+    const repeat = Number(textOf(node, "repeat") ?? 1);
+    if (repeat > 1 && (inlets.length !== 1 || outlets.length !== 1)) {
+      const data = { part: key.text, inlets: inlets.length, outlets: outlets.length };
+      report("repeat-ports", child(node, "repeat")?.at ?? key.at, data);
+    }
+    const instance = open(whole, within, bound, files, report, opened);
+    parts.set(key.text, { name: key.text, at: key.at, node, repeat, inlets, outlets, instance });
+  }
+  return { prefix, tree, bindings, parts };
+}
+
+/** Is a compartment another network? */
+export const isPart = (node: MapNode): boolean => kinds[textOf(node, "kind") ?? ""]?.placed === true;
+
+/** What a part's own `with:` gives, and what those further out give to names inside it. */
+function bindingsOf(
+  node: MapNode,
+  prefix: string,
+  part: string,
+  outer: ReadonlyMap<string, Binding>,
+): ReadonlyMap<string, Binding> {
+  const within = `${prefix}${part}.`;
+  const bound = new Map([...outer].filter(([name]) => name.startsWith(within)));
+  for (const { key, value } of entriesOf(child(node, "with"))) {
+    // Where both give one, the part's own file has the word; the other is told that nothing is open there.
+    bound.set(within + key.text, { key, value, part, prefix });
+  }
+  return bound;
+}
+
+/** A document and all its parts, outer ones first. */
+export function allInstances(root: Instance): Instance[] {
+  const found = [root];
+  for (const instance of found) for (const part of instance.parts.values()) found.push(part.instance);
+  return found;
+}
+
+const bodiesOf = ({ tree, parts }: Instance): number => {
+  let bodies = entriesOf(child(tree, "compartments")).length - parts.size;
+  for (const p of parts.values()) bodies += p.repeat * (bodiesOf(p.instance) + p.inlets.length + p.outlets.length);
+  return bodies;
+};
