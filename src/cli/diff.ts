@@ -5,9 +5,11 @@ import { type Figure, figuresOf, type Shown } from "../diff/figures.js";
 import { diffNetworks } from "../diff/network.js";
 import { parseAny } from "../parse/any.js";
 import type { NetworkDocument } from "../parse/network.js";
+import { filesOf } from "../parse/parsed.js";
 import { collector, hasErrors } from "../problems/report.js";
 import type { MapNode } from "../read/tree.js";
 import { readYaml } from "../read/yaml.js";
+import { wholeDocument } from "../resolve/based-on.js";
 import type { DocumentKind } from "../schema/shape.js";
 import { documents } from "../schema/validators.js";
 import type { Context } from "./context.js";
@@ -44,6 +46,7 @@ const shownJson = (shown: Shown | undefined): QuantityJson | null => (shown ? qu
 
 interface Opened {
   readonly kind: DocumentKind;
+  /** Of a variant: the base with the change laid over it. */
   readonly tree: MapNode;
   /** A whole network, not a change to one. */
   readonly network: NetworkDocument | undefined;
@@ -56,7 +59,9 @@ function open(file: string, { inputs }: Context): Opened {
   const tree = readYaml({ path: file, text }, collector().report);
   if (!kind || !tree || hasErrors(problems)) throw new InputError(problems);
   inputs.accept(problems);
-  return { kind: kind === "change" ? "network" : kind, tree, network };
+  const is = kind === "change" ? "network" : kind;
+  const files = filesOf(file, { read: inputs.read });
+  return { kind: is, tree: wholeDocument(tree, is, files, collector().report) ?? tree, network };
 }
 
 function ofNetworks(a: NetworkDocument, b: NetworkDocument): { differences: readonly Difference[]; figures: Figure[] } {

@@ -29,7 +29,7 @@ export function equations(file: string, { output }: EquationsOptions, { inputs, 
     json: {
       ok: true,
       network: network.title,
-      balances: balances.map(({ name, is, tex, terms, line }) => ({ name, is, tex, terms, line })),
+      balances: balances.map(({ left: _, ...balance }) => balance),
       markdown,
       ...(output === undefined ? {} : { written: output }),
     },

@@ -1,24 +1,21 @@
 import { Part, type Plant, type PlantNode } from "../compile/plant.js";
-import { type Link, lineOf, linksOf } from "./links.js";
+import { type Link, linksOf, type Where, whereOf } from "./links.js";
 import { concentration, spaceTime, texName, texQuantity, throughFlow, volume } from "./tex.js";
 
 /** One term of a balance, with its sign and its place in the file. */
-export interface Term {
+export interface Term extends Where {
   readonly tex: string;
   readonly says: string;
-  readonly line: number;
 }
 
-/** The equation of one node: a state that changes in time, a delay, a meeting of streams, or a body with a curve of its own. */
-export interface Balance {
+/** The equation of one node, at the place of its compartment or outlet: a state that changes in time, a delay, a meeting of streams, or a body with a curve of its own. */
+export interface Balance extends Where {
   readonly name: string;
   readonly is: "state" | "delay" | "joint" | "body";
   /** What stands left of the equals sign, and all of it. */
   readonly left: string;
   readonly tex: string;
   readonly terms: readonly Term[];
-  /** The line of the compartment, feed or outlet. */
-  readonly line: number;
 }
 
 /**
@@ -33,7 +30,13 @@ export function balancesOf(plant: Plant): Balance[] {
     if (feeds.has(i) || !(node.inflow > 0)) return [];
     const write = writers[node.part] ?? body;
     return [
-      write({ plant, node, line: lineAt(plant, node.name), into: arriving.get(i) ?? [], outOf: leaving.get(i) ?? [] }),
+      write({
+        plant,
+        node,
+        where: placeAt(plant, node.name),
+        into: arriving.get(i) ?? [],
+        outOf: leaving.get(i) ?? [],
+      }),
     ];
   });
 }
@@ -42,7 +45,7 @@ export function balancesOf(plant: Plant): Balance[] {
 interface Surrounded {
   readonly plant: Plant;
   readonly node: PlantNode;
-  readonly line: number;
+  readonly where: Where;
   readonly into: readonly Link[];
   readonly outOf: readonly Link[];
 }
@@ -54,34 +57,34 @@ const writers: Readonly<Record<number, (at: Surrounded) => Balance>> = {
 };
 
 /** V dc/dt = what comes in - what goes out. */
-function state({ plant, node: { name }, line, into, outOf }: Surrounded): Balance {
+function state({ plant, node: { name }, where, into, outOf }: Surrounded): Balance {
   const left = `${volume(name)} \\frac{d${concentration(name)}}{dt}`;
   const terms = [...into.map((l) => term("+", l, plant)), ...outOf.map((l) => term("-", l, plant))];
-  return { name, is: "state", left, tex: `${left} = ${sumOf(terms)}`, terms, line };
+  return { name, is: "state", left, tex: `${left} = ${sumOf(terms)}`, terms, ...where };
 }
 
 /** What leaves a tube is what entered it one space time ago. */
-function delay({ plant, node: { name, volume: held, inflow }, line, into }: Surrounded): Balance {
+function delay({ plant, node: { name, volume: held, inflow }, where, into }: Surrounded): Balance {
   const tau = spaceTime(name);
   const left = `${concentration(name)}(t)`;
   const late = mixture(into, plant, (c) => `${c}\\!\\left(t - ${tau}\\right)`);
   const value = texQuantity(held / inflow, plant.network.units.time);
   const tex = `${left} = ${late},\\qquad ${tau} = ${volume(name)} / ${throughFlow(name)} = ${value}`;
-  return { name, is: "delay", left, tex, terms: into.map((l) => term("+", l, plant)), line };
+  return { name, is: "delay", left, tex, terms: into.map((l) => term("+", l, plant)), ...where };
 }
 
-function joint({ plant, node: { name }, line, into }: Surrounded): Balance {
+function joint({ plant, node: { name }, where, into }: Surrounded): Balance {
   const left = concentration(name);
   const tex = `${left} = ${mixture(into, plant, (c) => c)}`;
-  return { name, is: "joint", left, tex, terms: into.map((l) => term("+", l, plant)), line };
+  return { name, is: "joint", left, tex, terms: into.map((l) => term("+", l, plant)), ...where };
 }
 
 /** A body that is known by its transfer function, in Laplace space. */
-function body({ plant, node: { name }, line, into }: Surrounded): Balance {
+function body({ plant, node: { name }, where, into }: Surrounded): Balance {
   const hat = (c: string): string => `\\hat ${c}(s)`;
   const left = hat(concentration(name));
   const tex = `${left} = G_{${texName(name)}}(s)\\; ${mixture(into, plant, hat)}`;
-  return { name, is: "body", left, tex, terms: into.map((l) => term("+", l, plant)), line };
+  return { name, is: "body", left, tex, terms: into.map((l) => term("+", l, plant)), ...where };
 }
 
 /** The flow-weighted mean of what enters; of one stream what that brings. */
@@ -92,9 +95,10 @@ function mixture(into: readonly Link[], { nodes }: Plant, form: (c: string) => s
   return `\\frac{${sum}}{${into.map((l) => l.symbol).join(" + ")}}`;
 }
 
-const term = (sign: "+" | "-", { symbol, from, says, line }: Link, { nodes }: Plant): Term => ({
+const term = (sign: "+" | "-", { symbol, from, says, file, line }: Link, { nodes }: Plant): Term => ({
   tex: `${sign} ${symbol}\\, ${concentration(nodes[from].name)}`,
   says: `${sign === "+" ? "in" : "out"}: ${says}`,
+  file,
   line,
 });
 
@@ -114,9 +118,8 @@ function grouped(links: readonly Link[], by: (link: Link) => number): Map<number
   return groups;
 }
 
-function lineAt({ network }: Plant, node: string): number {
+function placeAt({ network }: Plant, node: string): Where {
   const places = [...network.feeds, ...network.compartments, ...network.outlets];
-  return lineOf(
-    (places.find((p) => node === p.name) ?? places.find((p) => node.startsWith(`${p.name}.`)) ?? network).at,
-  );
+  const place = places.find((p) => node === p.name) ?? places.find((p) => node.startsWith(`${p.name}.`));
+  return whereOf((place ?? network).at);
 }

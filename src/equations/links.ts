@@ -3,8 +3,16 @@ import type { Exchange, Stream } from "../model/network.js";
 import { placeOf, type Span } from "../text/source.js";
 import { streamFlow } from "./tex.js";
 
+/** A place in a file: its path, and the line from 1. */
+export interface Where {
+  readonly file: string;
+  readonly line: number;
+}
+
+export const whereOf = (at: Span): Where => ({ file: at.source.path, line: placeOf({ ...at, to: at.from }).line });
+
 /** A flow between two primitive nodes, and where the file says so. */
-export interface Link {
+export interface Link extends Where {
   readonly from: number;
   readonly to: number;
   /** m3/s. */
@@ -13,29 +21,24 @@ export interface Link {
   readonly symbol: string;
   /** In words: "stream feed to bulk". */
   readonly says: string;
-  /** 1-based line of the file. */
-  readonly line: number;
 }
 
 /** A stream or an exchange as the file has it, with its solved flow. */
-export interface WrittenStream {
+export interface WrittenStream extends Where {
   readonly from: string;
   readonly to: string;
   /** m3/s. */
   readonly flow: number;
-  readonly line: number;
   readonly is: { readonly stream: Stream } | { readonly exchange: Exchange };
 }
-
-export const lineOf = (at: Span): number => placeOf({ ...at, to: at.from }).line;
 
 /** Streams, then exchanges, in file order. */
 export function writtenStreams({ network, streams }: Plant): WrittenStream[] {
   const places = [...network.feeds, ...network.compartments];
   const written = [
-    ...places.flatMap((p) => p.streams.map((stream) => ({ line: lineOf(stream.at), is: { stream } }))),
+    ...places.flatMap((p) => p.streams.map((stream) => ({ ...whereOf(stream.at), is: { stream } }))),
     ...network.compartments.flatMap((c) =>
-      c.exchanges.map((exchange) => ({ line: lineOf(exchange.at), is: { exchange } })),
+      c.exchanges.map((exchange) => ({ ...whereOf(exchange.at), is: { exchange } })),
     ),
   ];
   return streams.map(({ from, to, flow }, i) => ({ from, to, flow, ...written[i] }));
@@ -54,6 +57,7 @@ export function linksOf(plant: Plant): Link[] {
       flow: s.flow,
       symbol,
       says: bothWays ? `exchange of ${s.from} and ${s.to}` : `stream ${a} to ${b}`,
+      file: s.file,
       line: s.line,
     });
     return bothWays ? [link(s.from, s.to), link(s.to, s.from)] : [link(s.from, s.to)];
@@ -70,6 +74,6 @@ export function linksOf(plant: Plant): Link[] {
 function inner({ nodes, network }: Plant, from: number, to: number, flow: number): Link {
   const [a, b] = [nodes[from].name, nodes[to].name];
   const body = network.compartments.find((c) => b === c.name || b.startsWith(`${c.name}.`));
-  const line = lineOf((body ?? network).at);
-  return { from, to, flow, symbol: streamFlow(a, b), says: `inside ${body?.name ?? network.title}`, line };
+  const says = `inside ${body?.name ?? network.title}`;
+  return { from, to, flow, symbol: streamFlow(a, b), says, ...whereOf((body ?? network).at) };
 }

@@ -4,7 +4,7 @@ import { dimensions } from "../units/dimension.js";
 import { formatNumber, formatQuantity } from "../units/format.js";
 import { differenceInUnit, inUnit } from "../units/unit.js";
 import { type Balance, balancesOf } from "./balances.js";
-import { lineOf, linksOf, type WrittenStream, writtenStreams } from "./links.js";
+import { linksOf, type Where, type WrittenStream, whereOf, writtenStreams } from "./links.js";
 import {
   concentration,
   spaceTime,
@@ -20,6 +20,7 @@ import {
 /** The compiled balances of a plant as a Markdown page with math, for a reviewer: symbols, flows, volumes, one equation per state. */
 export function equationsMarkdown(plant: Plant, balances: readonly Balance[] = balancesOf(plant)): string {
   const { network } = plant;
+  const write = equation(locator(plant));
   const of = (is: Balance["is"]): Balance[] => balances.filter((b) => b.is === is);
   return [
     `# ${inText(network.title)}`,
@@ -27,10 +28,10 @@ export function equationsMarkdown(plant: Plant, balances: readonly Balance[] = b
     ...section("Names", namesTable(plant)),
     ...section("Flows", flowsTable(plant)),
     ...section("Bodies", bodiesTable(plant)),
-    ...section(`Balances of the ${counted(of("state").length, "state")}`, ...of("state").map(equation)),
-    ...section("Plug flow: delays", ...of("delay").map(equation)),
-    ...section("Bodies with a residence-time curve of their own", ...of("body").map(equation)),
-    ...section("Meeting streams and outlets", ...of("joint").map(equation)),
+    ...section(`Balances of the ${counted(of("state").length, "state")}`, ...of("state").map(write)),
+    ...section("Plug flow: delays", ...of("delay").map(write)),
+    ...section("Bodies with a residence-time curve of their own", ...of("body").map(write)),
+    ...section("Meeting streams and outlets", ...of("joint").map(write)),
     ...section("Total balances", totals(plant, balances)),
   ].join("\n\n");
 }
@@ -49,9 +50,15 @@ const table = (titles: readonly string[], rows: readonly (readonly string[])[]):
     : [titles, titles.map(() => "---"), ...rows].map((cells) => `| ${cells.join(" | ")} |`).join("\n");
 
 const math = (tex: string): string => `$${tex}$`;
-const at = (line: number): string => `L${line}`;
+/** Lines of the network's own file without its name. */
+const locator =
+  ({ network }: Plant) =>
+  ({ file, line }: Where): string =>
+    file === network.path ? `L${line}` : `\`${file}\` L${line}`;
 
-function namesTable({ network, env }: Plant): string {
+function namesTable(plant: Plant): string {
+  const { network, env } = plant;
+  const at = locator(plant);
   const rows = network.names
     .filter((n) => n.role !== "feed-flow")
     .map((n) => {
@@ -59,7 +66,7 @@ function namesTable({ network, env }: Plant): string {
       const sd = n.value.sd?.(env);
       const spread = sd === undefined ? "" : ` ± ${formatNumber(differenceInUnit(sd, unit))}`;
       const value = `${formatNumber(inUnit(env[n.slot], unit), 6)}${spread} ${unit.name}`.trim();
-      return [math(texValueName(n.name)), value, n.role, written(n.value), inText(n.about ?? ""), at(lineOf(n.at))];
+      return [math(texValueName(n.name)), value, n.role, written(n.value), inText(n.about ?? ""), at(whereOf(n.at))];
     });
   return table(["symbol", "value", "what", "as written", "about", "line"], rows);
 }
@@ -70,6 +77,7 @@ const written = ({ expression }: Value): string =>
 
 function flowsTable(plant: Plant): string {
   const { network, feeds, outlets } = plant;
+  const at = locator(plant);
   const unit = network.units.unitFor(dimensions.flow);
   const streams = writtenStreams(plant);
   const inside = linksOf(plant).filter((l) => l.says.startsWith("inside "));
@@ -87,19 +95,19 @@ function flowsTable(plant: Plant): string {
       ...network.feeds.map((f, i) => [
         math(`${throughFlow(f.name)} = ${texExpression(f.flow.expression)}`),
         say(feeds[i].flow),
-        at(lineOf(f.flow.at)),
+        at(whereOf(f.flow.at)),
       ]),
       ...network.compartments.flatMap((c) =>
         arriving(c.name) === ""
           ? []
-          : [[math(`${throughFlow(c.name)} = ${arriving(c.name)}`), say(through(c.name)), at(lineOf(c.at))]],
+          : [[math(`${throughFlow(c.name)} = ${arriving(c.name)}`), say(through(c.name)), at(whereOf(c.at))]],
       ),
-      ...streams.map((s) => [math(streamRule(s, streams)), say(s.flow), at(s.line)]),
-      ...inside.map((l) => [math(l.symbol), say(l.flow), at(l.line)]),
+      ...streams.map((s) => [math(streamRule(s, streams)), say(s.flow), at(s)]),
+      ...inside.map((l) => [math(l.symbol), say(l.flow), at(l)]),
       ...network.outlets.map((o, i) => [
         math(`${throughFlow(o.name)} = ${arriving(o.name)}`),
         say(outlets[i].flow),
-        at(lineOf(o.at)),
+        at(whereOf(o.at)),
       ]),
     ],
   );
@@ -120,27 +128,32 @@ function streamRule({ from, to, is }: WrittenStream, all: readonly WrittenStream
   return `${left} = ${[throughFlow(from), ...others.map((o) => streamFlow(from, o.to))].join(" - ")}`;
 }
 
-function bodiesTable({ network, env, nodes, volume: total }: Plant): string {
+function bodiesTable(plant: Plant): string {
+  const { network, env, nodes, volume: total } = plant;
+  const at = locator(plant);
   const unit = network.units.unitFor(dimensions.volume);
   const say = (v: number): string => formatQuantity(v, unit, 6);
   const bodies = network.compartments.flatMap((c) => [
     ...Object.entries(c.values).map(([key, v]) => {
       const left = key === "volume" ? volume(c.name) : `\\text{${key}}_{${texName(c.name)}}`;
       const value = formatQuantity(v.of(env), v.unit ?? network.units.unitFor(v.dimension), 6);
-      return [math(`${left} = ${texExpression(v.expression)}`), value, c.kind.name, at(lineOf(v.at))];
+      return [math(`${left} = ${texExpression(v.expression)}`), value, c.kind.name, at(whereOf(v.at))];
     }),
     ...nodes
       .filter((n) => n.name.startsWith(`${c.name}.`) && n.volume > 0)
-      .map((n) => [math(volume(n.name)), say(n.volume), `part of ${inText(c.name)}`, at(lineOf(c.at))]),
+      .map((n) => [math(volume(n.name)), say(n.volume), `part of ${inText(c.name)}`, at(whereOf(c.at))]),
   ]);
   const whole = [math("V"), say(total.total), total.dead > 0 ? `${say(total.dead)} of it dead` : "all", ""];
   return table(["symbol", "value", "kind", "line"], [...bodies, whole]);
 }
 
-function equation({ name, tex, terms, line }: Balance): string {
-  const rows = terms.map((t) => [math(t.tex), inText(t.says), at(t.line)]);
-  return `**${inText(name)}** (${at(line)})\n\n$$${tex}$$\n\n${table(["term", "from", "line"], rows)}`;
-}
+const equation =
+  (at: (where: Where) => string) =>
+  (balance: Balance): string => {
+    const { name, tex, terms } = balance;
+    const rows = terms.map((t) => [math(t.tex), inText(t.says), at(t)]);
+    return `**${inText(name)}** (${at(balance)})\n\n$$${tex}$$\n\n${table(["term", "from", "line"], rows)}`;
+  };
 
 function totals(plant: Plant, balances: readonly Balance[]): string {
   const { network, feeds, outlets, volume: v } = plant;
@@ -162,7 +175,7 @@ function totals(plant: Plant, balances: readonly Balance[]): string {
     sum(ports.map((p) => `${throughFlow(p.name)} ${concentration(p.name)}`));
   const lines = [
     `Liquid: $${sum(feeds.map((f) => throughFlow(f.name)))} = ${sum(outlets.map((o) => throughFlow(o.name)))}$, that is ${formatQuantity(q, flow, 6)} in and ${formatQuantity(out, flow, 6)} out.`,
-    `Substance: $\\frac{d}{dt}\\left(${sum(held)}\\right) = ${carried(feeds)} - \\left(${carried(outlets)}\\right)$, which is the sum of all balances above.`,
+    `Substance: $\\frac{d}{dt}\\left(${sum(held)}\\right) = ${carried(feeds)} - ${outlets.length > 1 ? `\\left(${carried(outlets)}\\right)` : carried(outlets)}$, which is the sum of all balances above.`,
   ];
   if (q > 0)
     lines.push(`Mean time: $\\tau = V_\\text{active} / Q = ${texQuantity(v.active / q, network.units.time)}$.`);

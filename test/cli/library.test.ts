@@ -82,6 +82,13 @@ describe("diff", () => {
   });
 });
 
+test("a variant is told from its base by what it changes", async () => {
+  const half = "trial: Half\nformat: 1\nbased-on: pulse.yaml\nchange: {injection: {pulse: 25 g}}\n";
+  const surroundings = { files: { ...files, "half.yaml": half } };
+  const { out } = await backmix(["diff", "pulse.yaml", "half.yaml"], surroundings);
+  expect(out).toContain("  ~ trial: Pulse -> Half\n  ~ injection.pulse: 50 g -> 25 g\n");
+});
+
 describe("verify", () => {
   const checked = `${tube}checks:\n  - {mean-time: product, equals: 10 min}\n  - {volume: all, equals: 0.1 m3}\n`;
   const wrong = `${tube}checks:\n  - {mean-time: product, equals: 11 min, within: 1 %}\n`;
