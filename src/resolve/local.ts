@@ -57,7 +57,8 @@ export function resolveLocal(
     if (part) return [{ part, ways: partWays(part, scope, report) }];
     // A part that could not be opened is told already.
     if (value.type !== "map" || isPart(value)) return [];
-    return resolveCompartment(key.text, key.at, value, scope, env, files, report) ?? [];
+    const body = resolveCompartment(key.text, key.at, value, scope, env, files, report);
+    return body ? [body] : [];
   });
   const outlets = itemsOf(child(tree, "outlets")).flatMap((item): Outlet[] => {
     if (item.type !== "scalar") return [];
