@@ -17,7 +17,7 @@ export const statedVolume: Rule = (network, report, { env, say }) => {
   const wanted = stated.value.of(env);
   const sum = network.compartments.reduce((total, c) => {
     const values = Object.fromEntries(Object.entries(c.values).map(([key, v]) => [key, v.of(env)]));
-    return total + c.kind.volume({ values, counts: c.counts });
+    return total + c.kind.volume({ values, counts: c.counts, zones: c.zones });
   }, 0);
   if (!Number.isFinite(sum - wanted) || Math.abs(sum - wanted) <= stated.within * Math.abs(wanted)) return;
   const text = (volume: number): string => say(volume, dimensions.volume);

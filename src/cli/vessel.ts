@@ -16,7 +16,7 @@ export interface Body {
 export function bodiesOf(plant: Plant): Body[] {
   const { network, env, streams } = plant;
   return network.compartments.flatMap((c): Body[] => {
-    if (c.values.volume === undefined) return [];
+    if (c.values.volume === undefined && !c.zones) return [];
     const volume = c.kind.volume(kindValues(c, env));
     const sum = (exchange: boolean): number =>
       streams

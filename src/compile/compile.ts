@@ -4,7 +4,7 @@ import type { Problem } from "../problems/problem.js";
 import { collector } from "../problems/report.js";
 import { formatQuantity } from "../units/format.js";
 import { evaluateNames } from "./evaluate.js";
-import { balanceFlows, type Flows, type Say } from "./flows.js";
+import { balanceFlows, type FlowPlan, type Flows, flowPlan, type Say } from "./flows.js";
 import type { Plant, PlantStream, Settings } from "./plant.js";
 import { valuesInRange, volumesOf } from "./ranges.js";
 import { spellOut } from "./spell.js";
@@ -20,15 +20,18 @@ export function compile(network: Network, settings: Settings = {}): { plant: Pla
   return { plant: plantOf(network, env, volumes, flows), problems };
 }
 
-/** What makes a network impossible at these values; empty where `compile` would give a plant. Cheaper than the plant. */
-export const problemsAt = (network: Network, settings: Settings): Problem[] => balance(network, settings).problems;
+/** Tells of many settings what makes a network impossible there; nothing where `compile` would give a plant. */
+export function problemFinder(network: Network): (settings: Settings) => Problem[] {
+  const plan = flowPlan(network);
+  return (settings) => balance(network, settings, plan).problems;
+}
 
-function balance(network: Network, settings: Settings) {
+function balance(network: Network, settings: Settings, plan?: FlowPlan) {
   const { report, problems } = collector();
   const env = evaluateNames(network, settings);
   const say: Say = (si, dimension) => formatQuantity(si, network.units.unitFor(dimension), 6);
   const volumes = volumesOf(network, env, report, say);
-  const flows = balanceFlows(network, env, report, say);
+  const flows = balanceFlows(network, env, report, say, plan);
   valuesInRange(network, env, report, say);
   return { env, volumes, flows, problems };
 }
@@ -36,18 +39,30 @@ function balance(network: Network, settings: Settings) {
 function plantOf(network: Network, env: Float64Array, volumes: Float64Array, flows: Flows): Plant {
   const spelled = spellOut(network, env, flows);
   const { nodes, from, to, flow } = spelled;
-  const inflow = new Float64Array(nodes.length);
+  const inflow = new Float64Array(nodes.size);
   for (let k = 0; k < flow.length; k++) inflow[to[k]] += flow[k];
   network.feeds.forEach((_, i) => {
     inflow[i] += flows.through[i];
   });
   const total = volumes.reduce((sum, v) => sum + v, 0);
-  const active = nodes.reduce((sum, n, i) => sum + (inflow[i] > 0 ? n.volume : 0), 0);
+  let active = 0;
+  for (let i = 0; i < nodes.size; i++) if (inflow[i] > 0) active += nodes.volume[i];
+  let made: Plant["nodes"] | undefined;
   const offset = network.feeds.length + network.compartments.length;
   return {
     network,
     env,
-    nodes: nodes.map((n, i) => ({ ...n, inflow: inflow[i] })),
+    get nodes() {
+      made ??= nodes.nodes(inflow);
+      return made;
+    },
+    columns: {
+      size: nodes.size,
+      part: nodes.part.subarray(0, nodes.size),
+      volume: nodes.volume.subarray(0, nodes.size),
+      inflow,
+      nameOf: (i) => nodes.nameOf(i),
+    },
     from,
     to,
     flow,
@@ -59,7 +74,7 @@ function plantOf(network: Network, env: Float64Array, volumes: Float64Array, flo
     })),
     entry: spelled.entry,
     exit: spelled.exit,
-    groups: stronglyConnected({ size: nodes.length, from, to }),
+    groups: stronglyConnected({ size: nodes.size, from, to }),
     streams: streamsOf(network, env, flows),
     volume: { total, active, dead: total - active },
   };

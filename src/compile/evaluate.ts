@@ -22,5 +22,5 @@ export function kindValues(c: Compartment, env: ArrayLike<number>): KindValues {
     values[key] = c.values[key].of(env);
     if (isRatio(c.values[key].dimension)) shares.add(key);
   }
-  return { values, counts: c.counts, words: c.words, shares };
+  return { values, counts: c.counts, words: c.words, shares, zones: c.zones };
 }

@@ -1,9 +1,11 @@
+import type { ZoneTable } from "../compartments/zone-table.js";
 import type { Network, Stream } from "../model/network.js";
-import { stronglyConnected } from "../numerics/graph.js";
+import { type Adjacency, adjacency, stronglyConnected } from "../numerics/graph.js";
 import { factor, solve } from "../numerics/lu.js";
 import type { Report } from "../problems/report.js";
 import type { Span } from "../text/source.js";
 import { type Dimension, dimensions } from "../units/dimension.js";
+import { zoneFlows } from "./zone-flows.js";
 
 /** Solved steady flows, m3/s. */
 export interface Flows {
@@ -11,6 +13,8 @@ export interface Flows {
   readonly through: Float64Array;
   /** Streams in file order, feeds' first: indices of places, and the flow. */
   readonly streams: readonly SolvedStream[];
+  /** Zoned bodies with their flows scaled to what enters, by compartment. */
+  readonly zoned: ReadonlyMap<number, () => ZoneTable>;
 }
 
 export interface SolvedStream {
@@ -20,13 +24,34 @@ export interface SolvedStream {
   readonly stream: Stream;
 }
 
-/** One stream as a linear function of its source's through-flow: share * through + fixed. */
-interface Branch {
-  readonly from: number;
-  readonly to: number;
-  readonly share: number;
-  readonly fixed: number;
-  readonly stream: Stream;
+/** What of the flows does not depend on values: found once where a network is balanced many times. */
+export interface FlowPlan {
+  /** Feeds, then compartments, then outlets, in file order. */
+  readonly places: readonly Place[];
+  /** One branch per stream, feeds' first. */
+  readonly streams: readonly Stream[];
+  readonly from: Int32Array;
+  readonly to: Int32Array;
+  /** Groups of places in flow order. */
+  readonly groups: readonly Int32Array[];
+  readonly into: Adjacency;
+}
+
+export function flowPlan(network: Network): FlowPlan {
+  const places: Place[] = [...network.feeds, ...network.compartments, ...network.outlets];
+  const index = new Map(places.map((p, i) => [p.name, i]));
+  const nodes = [...network.feeds, ...network.compartments];
+  const streams = nodes.flatMap((n) => n.streams);
+  const from = Int32Array.from(nodes.flatMap((n, i) => n.streams.map(() => i)));
+  const to = Int32Array.from(streams, (s) => index.get(s.to) as number);
+  const size = places.length;
+  return { places, streams, from, to, groups: stronglyConnected({ size, from, to }), into: adjacency(size, to) };
+}
+
+/** Every stream as a linear function of its source's through-flow: share * through + fixed. */
+interface Branches {
+  readonly share: Float64Array;
+  readonly fixed: Float64Array;
 }
 
 /**
@@ -34,10 +59,14 @@ interface Branch {
  * substitution, only circles need a small linear solve.
  * @returns undefined where a flow cannot be found; the reason is in `report`
  */
-export function balanceFlows(network: Network, env: Float64Array, report: Report, say: Say): Flows | undefined {
-  const places: Place[] = [...network.feeds, ...network.compartments, ...network.outlets];
-  const index = new Map(places.map((p, i) => [p.name, i]));
-  const branches = branchesOf(network, index, env);
+export function balanceFlows(
+  network: Network,
+  env: Float64Array,
+  report: Report,
+  say: Say,
+  plan: FlowPlan = flowPlan(network),
+): Flows | undefined {
+  const { places, from, to } = plan;
   const supply = new Float64Array(places.length);
   let good = splitsPossible(network, env, report, say);
   network.feeds.forEach((f, i) => {
@@ -51,20 +80,24 @@ export function balanceFlows(network: Network, env: Float64Array, report: Report
     }
   });
   if (!good) return undefined;
-  const solved = solveThrough(places.length, branches, supply);
+  const { share, fixed } = branchesOf(network, plan, env);
+  const solved = solveThrough(plan, { share, fixed }, supply);
   if ("stuck" in solved) {
     const group = [...solved.stuck].sort((a, b) => a - b).map((i) => places[i]);
     report("loop-unbounded", group[0].at, { names: group.map((p) => p.name) });
     return undefined;
   }
   const { through } = solved;
-  const streams = branches.map((b) => {
+  const streams = plan.streams.map((stream, k): SolvedStream => {
     // A rest that is zero but for rounding is zero.
-    const flow = b.share * through[b.from] + b.fixed;
-    const small = 1e-12 * (Math.abs(b.share * through[b.from]) + Math.abs(b.fixed));
-    return { from: b.from, to: b.to, stream: b.stream, flow: Math.abs(flow) <= small ? 0 : flow };
+    const part = share[k] * through[from[k]];
+    const flow = part + fixed[k];
+    const small = 1e-12 * (Math.abs(part) + Math.abs(fixed[k]));
+    return { from: from[k], to: to[k], stream, flow: Math.abs(flow) <= small ? 0 : flow };
   });
-  return allPositive(streams, through, places, report, say) ? { through, streams } : undefined;
+  if (!allPositive(streams, through, places, report, say)) return undefined;
+  const zoned = zoneFlows(network, streams, report, say);
+  return zoned && { through, streams, zoned };
 }
 
 /** A value as the file would write it, for messages. */
@@ -106,53 +139,58 @@ function splitsPossible(network: Network, env: Float64Array, report: Report, say
   return good;
 }
 
-function branchesOf(network: Network, index: ReadonlyMap<string, number>, env: Float64Array): Branch[] {
-  return [...network.feeds, ...network.compartments].flatMap((node, from) => {
-    let shares = 0;
-    let fixed = 0;
-    for (const { split } of node.streams) {
-      if (split.is === "share") shares += split.value.of(env);
-      else if (split.is === "flow") fixed += split.value.of(env);
-    }
-    const rest = 1 - shares;
-    return node.streams.map((stream): Branch => {
-      const to = index.get(stream.to) as number;
-      const { split } = stream;
-      if (split.is === "share") return { from, to, stream, share: split.value.of(env), fixed: 0 };
-      if (split.is === "flow") return { from, to, stream, share: 0, fixed: split.value.of(env) };
-      if (split.is === "all") return { from, to, stream, share: 1, fixed: 0 };
-      return { from, to, stream, share: Math.abs(rest) < 1e-15 ? 0 : rest, fixed: -fixed };
+function branchesOf(network: Network, plan: FlowPlan, env: Float64Array): Branches {
+  const share = new Float64Array(plan.streams.length);
+  const fixed = new Float64Array(plan.streams.length);
+  let first = 0;
+  for (const { streams } of [...network.feeds, ...network.compartments]) {
+    let [shares, flows, rest] = [0, 0, -1];
+    streams.forEach(({ split }, n) => {
+      const k = first + n;
+      if (split.is === "share") {
+        share[k] = split.value.of(env);
+        shares += share[k];
+      } else if (split.is === "flow") {
+        fixed[k] = split.value.of(env);
+        flows += fixed[k];
+      } else if (split.is === "all") share[k] = 1;
+      else rest = k;
     });
-  });
+    if (rest >= 0) {
+      share[rest] = Math.abs(1 - shares) < 1e-15 ? 0 : 1 - shares;
+      fixed[rest] = -flows;
+    }
+    first += streams.length;
+  }
+  return { share, fixed };
 }
 
 /** Through-flows, or the places of a circle whose flow cannot be told. */
 function solveThrough(
-  size: number,
-  branches: readonly Branch[],
+  { places, from, groups, into }: FlowPlan,
+  { share, fixed }: Branches,
   supply: Float64Array,
 ): { through: Float64Array } | { stuck: Int32Array } {
-  const graph = { size, from: branches.map((b) => b.from), to: branches.map((b) => b.to) };
-  const into: Branch[][] = Array.from({ length: size }, () => []);
-  for (const b of branches) into[b.to].push(b);
-  const through = new Float64Array(size);
-  for (const group of stronglyConnected(graph)) {
-    const local = new Map([...group].map((node, i) => [node, i]));
+  const through = new Float64Array(places.length);
+  const local = new Int32Array(places.length).fill(-1);
+  for (const group of groups) {
     const n = group.length;
     const matrix = new Float64Array(n * n);
     const rhs = new Float64Array(n);
-    group.forEach((node, i) => {
+    for (let i = 0; i < n; i++) local[group[i]] = i;
+    for (let i = 0; i < n; i++) {
+      const node = group[i];
       matrix[i * n + i] += 1;
       rhs[i] = supply[node];
-      for (const b of into[node]) {
-        const j = local.get(b.from);
-        if (j === undefined) rhs[i] += b.share * through[b.from] + b.fixed;
-        else {
-          matrix[i * n + j] -= b.share;
-          rhs[i] += b.fixed;
-        }
+      for (let e = into.start[node]; e < into.start[node + 1]; e++) {
+        const k = into.edges[e];
+        const j = local[from[k]];
+        if (j < 0) rhs[i] += share[k] * through[from[k]];
+        else matrix[i * n + j] -= share[k];
+        rhs[i] += fixed[k];
       }
-    });
+    }
+    for (let i = 0; i < n; i++) local[group[i]] = -1;
     if (n > 1 || matrix[0] !== 1) {
       const lu = factor(matrix, n);
       if (lu === "singular") return { stuck: group };

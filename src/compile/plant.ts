@@ -16,6 +16,8 @@ export interface Plant {
   /** Values of all names, one slot each. */
   readonly env: Float64Array;
   readonly nodes: readonly PlantNode[];
+  /** The same as columns, by node: for plants of many cells, where `nodes` is better left unasked (it is made when asked for). */
+  readonly columns: NodeColumns;
   /** Links, one per stream between primitive nodes; an exchange is two links. m3/s. */
   readonly from: Int32Array;
   readonly to: Int32Array;
@@ -42,6 +44,17 @@ export interface PlantNode {
   readonly block?: Block;
   /** All that enters, exchange included, m3/s. */
   readonly inflow: number;
+}
+
+/** Nodes as columns. */
+export interface NodeColumns {
+  readonly size: number;
+  readonly part: Uint8Array;
+  /** m3 */
+  readonly volume: Float64Array;
+  /** m3/s */
+  readonly inflow: Float64Array;
+  nameOf(node: number): string;
 }
 
 export interface PlantStream {

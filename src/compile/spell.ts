@@ -46,7 +46,7 @@ export function spellOut(network: Network, env: Float64Array, flows: Flows): Spe
       cells: (volume, names) => nodes.addCells(volume, `${c.name}.`, names),
       links: (a, b, q) => links.addAll(a, b, q),
     };
-    const ports = c.kind.spell(maker, { ...kindValues(c, env), zones: flows.zoned.get(i) });
+    const ports = c.kind.spell(maker, { ...kindValues(c, env), zones: flows.zoned.get(i)?.() });
     if (!ports) return;
     const know = (places: Places, members: readonly Member[] = []) => {
       for (const m of members) places.set(full(m.suffix), m.node);

@@ -9,8 +9,8 @@ import type { Say, SolvedStream } from "./flows.js";
 const rounding = 1e-14;
 
 /**
- * Every zoned body with the flows of its table scaled to what streams bring: by compartment, in file order. Without
- * `follow: inflow` they must bring what the table says.
+ * Every zoned body with the flows of its table scaled to what streams bring: by compartment, in file order, made when
+ * asked for. Without `follow: inflow` they must bring what the table says.
  * @returns undefined where they do not; reported
  */
 export function zoneFlows(
@@ -18,8 +18,8 @@ export function zoneFlows(
   streams: readonly SolvedStream[],
   report: Report,
   say: Say,
-): ReadonlyMap<number, ZoneTable> | undefined {
-  const zoned = new Map<number, ZoneTable>();
+): ReadonlyMap<number, () => ZoneTable> | undefined {
+  const zoned = new Map<number, () => ZoneTable>();
   let good = true;
   network.compartments.forEach((c, i) => {
     if (!c.zones) return;
@@ -38,20 +38,26 @@ export function zoneFlows(
       report("zone-inflow", into(t.name)[0]?.stream.at ?? c.at, data, { at: t.at, says: "the table names it here" });
     });
     if (!good) return;
-    const flow = scaled(zones, enters, factor);
-    if (flow === "impossible") {
-      good = false;
-      report("zone-irreconcilable", c.at, { name });
-    } else zoned.set(i, { ...zones, flow });
+    const agree = zones.inlets.every((t, k) => Math.abs(enters[k] - t.flow * factor) <= rounding * enters[k]);
+    if (agree) zoned.set(i, () => scaled(zones, factor));
+    else {
+      const flow = rebalanced(zones, enters, factor);
+      if (flow !== "impossible") zoned.set(i, () => ({ ...zones, flow }));
+      else {
+        good = false;
+        report("zone-irreconcilable", c.at, { name });
+      }
+    }
   });
   return good ? zoned : undefined;
 }
 
-function scaled(zones: ZoneTable, enters: Float64Array, factor: number): Float64Array | "impossible" {
-  const flow = factor === 1 ? zones.flow : zones.flow.map((q) => q * factor);
-  const agree = zones.inlets.every((t, k) => Math.abs(enters[k] - t.flow * factor) <= rounding * enters[k]);
-  if (agree) return flow;
+const scaled = (zones: ZoneTable, factor: number): ZoneTable =>
+  factor === 1 ? zones : { ...zones, flow: zones.flow.map((q) => q * factor) };
+
+/** Where the inlets' flows are not quite in the proportion of the table. */
+function rebalanced(zones: ZoneTable, enters: Float64Array, factor: number): Float64Array | "impossible" {
+  const { from, to, flow } = scaled(zones, factor);
   const outlets = Float64Array.from(zones.outlets, (t) => t.flow * factor);
-  const { volume, from, to } = zones;
-  return reconcileFlows({ size: volume.length, from, to, flow }, { inlets: enters, outlets });
+  return reconcileFlows({ size: zones.volume.length, from, to, flow }, { inlets: enters, outlets });
 }

@@ -17,8 +17,9 @@ export interface SheetOptions {
 }
 
 /** The flow sheet of a balanced plant: its file's names, its solved flows, its file's units. */
-export function flowSheet(plant: Plant, options: SheetOptions = {}): FlowSheet {
+export function flowSheet(plant: Plant, wanted: SheetOptions = {}): FlowSheet {
   const { network } = plant;
+  const options = atPorts(plant, wanted);
   const units = { volume: network.units.unitFor(dimensions.volume), flow: network.units.unitFor(dimensions.flow) };
   const named = (name: string, role: BodyRole): SheetBody => withOptions({ name, volume: 0, role }, options);
   const bodies = [
@@ -35,16 +36,27 @@ export function flowSheet(plant: Plant, options: SheetOptions = {}): FlowSheet {
   };
 }
 
+/** What is marked at a part is marked at its port. */
+function atPorts({ network: { groups } }: Plant, options: SheetOptions): SheetOptions {
+  const port = (side: "inlets" | "outlets") => (name: string) => groups.find((g) => g.name === name)?.[side][0] ?? name;
+  const { injections, probes } = options;
+  return {
+    ...options,
+    ...(injections ? { injections: injections.map(port("inlets")) } : {}),
+    ...(probes ? { probes: probes.map(port("outlets")) } : {}),
+  };
+}
+
 function bodyOf(c: Compartment, { env }: Plant): SheetBody {
   const values = kindValues(c, env);
   const volume = c.kind.volume(values);
-  const role = !c.kind.flows ? "dead" : c.kind.keys.volume === undefined ? "junction" : "body";
+  const role = !c.kind.flows ? "dead" : c.kind.keys.volume === undefined && !c.kind.zoned ? "junction" : "body";
   return { name: c.name, volume, role, aspect: c.kind.aspect(values), picture: (box) => c.kind.picture(box, values) };
 }
 
 function withOptions(body: SheetBody, { injections, probes, notes, accents }: SheetOptions): SheetBody {
   const here = (names: readonly string[] | undefined): boolean =>
-    names?.some((n) => n.split(".")[0] === body.name) ?? false;
+    names?.some((n) => n === body.name || n.startsWith(`${body.name}.`)) ?? false;
   const marks = [...(here(injections) ? (["injection"] as const) : []), ...(here(probes) ? (["probe"] as const) : [])];
   const note = notes?.get(body.name);
   return {

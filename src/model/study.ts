@@ -1,3 +1,4 @@
+import type { Files } from "../read/files.js";
 import type { MapNode } from "../read/tree.js";
 import type { Span } from "../text/source.js";
 import type { Duty } from "./duty.js";
@@ -23,6 +24,8 @@ export interface Rival {
   readonly network: Network;
   readonly tree: MapNode;
   readonly path: string;
+  /** How the network reached the files that it names. */
+  readonly files: Files;
 }
 
 /** A change to compare: `change:` of a network document without a vessel of its own. */

@@ -5,12 +5,11 @@ import { collector } from "../problems/report.js";
 import { decodeText } from "../read/decode.js";
 import { checkShape, documentKind } from "../read/shape.js";
 import { child, type MapNode } from "../read/tree.js";
-import { readYaml } from "../read/yaml.js";
 import type { DocumentKind } from "../schema/shape.js";
 import { parseChemistry } from "./chemistry.js";
 import { parseDuty } from "./duty.js";
 import { type NetworkDocument, parseNetwork } from "./network.js";
-import { nothingToRead, type ParseOptions } from "./parsed.js";
+import { nothingToRead, type ParseOptions, readDocument } from "./parsed.js";
 import { parseChange, parseStudy } from "./study.js";
 import { parseTrial } from "./trial.js";
 
@@ -23,23 +22,24 @@ export interface AnyDocument {
 
 /** Reads any of the five documents, told apart by the first key; a network that is only a change is one too. */
 export function parseAny(text: string, options: ParseOptions = {}): AnyDocument {
-  const { report, problems } = collector();
-  const tree = readYaml({ path: options.path ?? "-", text }, report);
-  if (!tree) return { kind: undefined, network: undefined, problems };
+  const reading = readDocument(text, options.path ?? "-");
+  const { tree } = reading;
+  if (!tree) return { kind: undefined, network: undefined, problems: reading.problems };
   const kind = documentKind(tree);
   if (kind === "network" && isChange(tree)) {
     return { kind: "change", network: undefined, problems: parseChange(text, options).problems };
   }
   if (kind === "network") {
-    const parsed = parseNetwork(text, options);
+    const parsed = parseNetwork(reading, options);
     return { kind, network: parsed.document, problems: parsed.problems };
   }
   if (kind === undefined) {
+    const { report, problems } = collector();
     checkShape(tree, "network", report);
-    return { kind, network: undefined, problems };
+    return { kind, network: undefined, problems: [...reading.problems, ...problems] };
   }
   if (kind === "trial") {
-    const { document, problems } = parseTrial(text, options);
+    const { document, problems } = parseTrial(reading, options);
     return {
       kind,
       network: undefined,
@@ -47,7 +47,7 @@ export function parseAny(text: string, options: ParseOptions = {}): AnyDocument 
     };
   }
   const parse = { chemistry: parseChemistry, duty: parseDuty, study: parseStudy }[kind];
-  return { kind, network: undefined, problems: parse(text, options).problems };
+  return { kind, network: undefined, problems: parse(reading, options).problems };
 }
 
 /** How a trial fits the vessel that it names, or what is wrong with that. */

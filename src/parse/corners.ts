@@ -1,4 +1,4 @@
-import { problemsAt } from "../compile/compile.js";
+import { problemFinder } from "../compile/compile.js";
 import { evaluateNames } from "../compile/evaluate.js";
 import type { Settings } from "../compile/plant.js";
 import type { Named, Network } from "../model/network.js";
@@ -8,17 +8,21 @@ import { formatQuantity } from "../units/format.js";
 
 /** Above this many parameters only the corners with one parameter moved are looked at. */
 const fewParameters = 8;
+/** Corners times compartments: above it too, since a check should be over before one has looked away. */
+const mostWork = 20_000;
 
 /** Warns once where a corner of the bounds that `requires:` allows makes a volume or flow impossible. */
 export function cornerWarnings(network: Network, report: Report): void {
-  const moved = network.names.filter((n) => n.between);
+  const moved = network.names.filter((n) => n.between && network.used.has(n.name));
+  const most = Math.min(fewParameters, Math.log2(mostWork / network.compartments.length));
+  const problemsAt = problemFinder(network);
   const ends = endsOf(network, moved);
   const why = (settings: Settings): string | undefined => {
     const values = evaluateNames(network, settings);
     if (network.requires.some((r) => !(r.slack(values) > 0))) return undefined;
-    return problemsAt(network, settings)[0]?.message;
+    return problemsAt(settings)[0]?.message;
   };
-  for (const settings of cornersOf(moved, ends)) {
+  for (const settings of cornersOf(moved, ends, moved.length > most)) {
     if (why(settings) === undefined) continue;
     const least = withoutIdle(settings, why);
     const corner = moved.flatMap((n) =>
@@ -38,9 +42,13 @@ function endsOf(network: Network, moved: readonly Named[]): Map<string, readonly
   return new Map(moved.map((n) => [n.name, (n.between ?? []).map((b) => b.of(env))]));
 }
 
-function* cornersOf(moved: readonly Named[], ends: ReadonlyMap<string, readonly number[]>): Generator<Settings> {
+function* cornersOf(
+  moved: readonly Named[],
+  ends: ReadonlyMap<string, readonly number[]>,
+  alone: boolean,
+): Generator<Settings> {
   const end = (n: Named, which: number): [string, number] => [n.name, ends.get(n.name)?.[which] ?? Number.NaN];
-  if (moved.length > fewParameters) {
+  if (alone) {
     for (const n of moved) for (const which of [0, 1]) yield Object.fromEntries([end(n, which)]);
   } else {
     for (let c = 1; c <= 2 ** moved.length; c++) {

@@ -4,10 +4,10 @@ import { decodeText } from "../read/decode.js";
 import { beside } from "../read/paths.js";
 import { resolveDuty } from "../resolve/duty.js";
 import { parseChemistry } from "./chemistry.js";
-import { nothingToRead, type Parsed, type ParseOptions, parseDocument } from "./parsed.js";
+import { nothingToRead, type Parsed, type ParseOptions, parseDocument, type Reading } from "./parsed.js";
 
 /** Reads a duty and the chemistry that it names. */
-export function parseDuty(text: string, options: ParseOptions = {}): Parsed<Duty> {
+export function parseDuty(text: string | Reading, options: ParseOptions = {}): Parsed<Duty> {
   const path = options.path ?? "duty.yaml";
   const read = options.read ?? nothingToRead;
   return parseDocument("duty", text, { ...options, path }, (tree, report, adopt) => {

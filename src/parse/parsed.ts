@@ -33,6 +33,17 @@ export function filesOf(path: string, { read = nothingToRead, root, allowOutside
   return { read, root: allowOutside ? undefined : (root ?? usualRoot(path)), real, size };
 }
 
+/** The tree of a text, read once for who must tell first what document it is. */
+export interface Reading {
+  readonly tree: MapNode | undefined;
+  readonly problems: readonly Problem[];
+}
+
+export function readDocument(text: string, path: string): Reading {
+  const { report, problems } = collector();
+  return { tree: readYaml({ path, text }, report), problems };
+}
+
 /** A document, or the reasons why there is none. Warnings may stand beside a document. */
 export interface Parsed<T> {
   readonly document: T | undefined;
@@ -53,13 +64,15 @@ export type Meaning<T> = (
  */
 export function parseDocument<T>(
   kind: DocumentKind,
-  text: string,
+  text: string | Reading,
   options: ParseOptions & { readonly path: string },
   meaning: Meaning<T>,
   glance?: (tree: MapNode, report: Report) => void,
 ): Parsed<T> {
   const { report, problems } = collector();
-  const tree = readYaml({ path: options.path, text }, report);
+  const reading = typeof text === "string" ? readDocument(text, options.path) : text;
+  const { tree } = reading;
+  problems.push(...reading.problems);
   let document: T | undefined;
   if (tree && checkShape(tree, kind, report)) {
     const whole = wholeDocument(tree, kind, filesOf(options.path, options), report);

@@ -9,11 +9,11 @@ import { child, itemsOf, type MapNode, type ScalarNode, textOf } from "../read/t
 import { readYaml } from "../read/yaml.js";
 import { parseDuty } from "./duty.js";
 import { parseNetwork } from "./network.js";
-import { nothingToRead, type Parsed, type ParseOptions, parseDocument, type Read } from "./parsed.js";
+import { nothingToRead, type Parsed, type ParseOptions, parseDocument, type Read, type Reading } from "./parsed.js";
 import { parseTrial } from "./trial.js";
 
 /** Reads a study and every document that it names; problems of all of them together, file by file. */
-export function parseStudy(text: string, options: ParseOptions = {}): Parsed<Study> {
+export function parseStudy(text: string | Reading, options: ParseOptions = {}): Parsed<Study> {
   const path = options.path ?? "study.yaml";
   const read = options.read ?? nothingToRead;
   return parseDocument("study", text, { ...options, path }, (tree, report, adopt) => {
@@ -26,7 +26,9 @@ export function parseStudy(text: string, options: ParseOptions = {}): Parsed<Stu
         adopt(parsed.problems);
         return parsed.document ? [{ ...parsed.document, file }] : [];
       });
-    const rivals = open("rivals", parseNetwork).map((n): Rival => ({ network: n, tree: n.tree, path: n.file }));
+    const rivals = open("rivals", parseNetwork).map(
+      (n): Rival => ({ network: n, tree: n.tree, path: n.file, files: n.files }),
+    );
     const trials = open("trials", parseTrial);
     const duties = open("duties", parseDuty);
     const changes = open("changes", parseChange);

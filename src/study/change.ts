@@ -1,8 +1,9 @@
 import type { Network } from "../model/network.js";
 import type { ChangeDocument, Rival } from "../model/study.js";
 import { networkFromTree } from "../parse/network.js";
-import { hasErrors } from "../problems/report.js";
+import { collector, hasErrors } from "../problems/report.js";
 import { mergeTree } from "../read/merge.js";
+import { checkShape } from "../read/shape.js";
 import { child, entriesOf, type MapNode } from "../read/tree.js";
 
 /** A rival with a change laid over it, or the reason why it cannot be. */
@@ -17,7 +18,12 @@ export type Changed =
 export function applyChange(rival: Rival, change: ChangeDocument): Changed {
   const lacking = lacks(rival.tree, change.change);
   if (lacking) return { skipped: `it changes ${lacking}, which this network does not have` };
-  const { network, problems } = networkFromTree(mergeTree(rival.tree, change.change), rival.path);
+  const missing: string[] = [];
+  const merged = mergeTree(rival.tree, change.change, (key) => missing.push(key.text));
+  if (missing.length > 0) return { skipped: `it removes '${missing[0]}', which this network does not have` };
+  const shape = collector();
+  if (!checkShape(merged, "network", shape.report)) return { skipped: shape.problems[0].message };
+  const { network, problems } = networkFromTree(merged, rival.path, rival.files);
   if (!network || hasErrors(problems)) {
     const first = problems.find((p) => p.severity === "error");
     return { skipped: first ? first.message : "the changed network is not complete" };

@@ -1,3 +1,4 @@
+import { columnsOf } from "../../src/compile/node-list.js";
 import { Part, type Plant } from "../../src/compile/plant.js";
 import type { Chemistry, Reaction } from "../../src/model/chemistry.js";
 import type { Duty } from "../../src/model/duty.js";
@@ -52,6 +53,7 @@ export function plantOf({ cells = {}, tubes = {}, links }: Sketch): Plant {
     network: { title: "made by hand" } as unknown as Network,
     env: new Float64Array(),
     nodes,
+    columns: columnsOf(nodes),
     from,
     to,
     flow,
