@@ -3,11 +3,12 @@ import type { Network } from "../model/network.js";
 import type { Report } from "../problems/report.js";
 import { nearest } from "../text/nearest.js";
 import type { Span } from "../text/source.js";
+import { placeNames } from "./places.js";
 import { sameKind } from "./same-kind.js";
 
 /** Does a duty fit a network: are its feeds, places and constants there, and does it say what every feed brings? */
 export function checkDuty(network: Network, duty: Duty, report: Report): void {
-  const feeds = network.feeds.map((f) => f.name);
+  const { feeds, outlets, left } = placeNames(network);
   const look = (name: string, at: Span, wanted: string, among: readonly string[]): boolean => {
     if (among.includes(name)) return true;
     report("unknown-place", at, { name, nearest: nearest(name, among), wanted, known: among });
@@ -20,14 +21,9 @@ export function checkDuty(network: Network, duty: Duty, report: Report): void {
     for (const feed of feeds) if (!duty.feeds.has(feed)) report("feed-not-given", duty.at, { feed });
   }
   checkSettings(network, duty, look, report);
-  const places = [...network.outlets, ...network.compartments, ...network.feeds].map((p) => p.name);
-  const members = network.compartments.flatMap(({ name, counts }) =>
-    Array.from({ length: counts.repeat ?? 0 }, (_, i) => `${name}.${i + 1}`),
-  );
-  const outlets = network.outlets.map((o) => o.name);
   for (const { at, place, what } of duty.report) {
     if (at !== undefined && what === "tracer-time") look(at, place, "outlet", outlets);
-    else if (at !== undefined) look(at, place, "outlet, compartment or feed", [...places, ...members]);
+    else if (at !== undefined) look(at, place, "outlet, compartment or feed", [...outlets, ...left, ...feeds]);
   }
 }
 
@@ -37,7 +33,7 @@ function checkSettings(
   look: (name: string, at: Span, wanted: string, among: readonly string[]) => boolean,
   report: Report,
 ): void {
-  const own = network.names.filter((n) => n.role !== "feed-flow");
+  const own = network.names.filter((n) => n.role !== "feed-flow" && n.role !== "inflow");
   const names = [...own.map((n) => n.name), ...(duty.chemistry?.constants.map((c) => c.name) ?? [])];
   for (const [name, { at, value }] of duty.settings) {
     if (!look(name, at, "constant", names)) continue;

@@ -15,7 +15,12 @@ export const finiteValues: Rule = (network, report, { env }) => {
   for (const slot of network.order) {
     const n = bySlot.get(slot);
     if (!n) continue;
-    const what = n.role === "feed-flow" ? `the flow of '${n.name.replace(/\.flow$/, "")}'` : `'${n.name}'`;
+    const what =
+      n.role === "inflow"
+        ? `the flow into '${n.name.replace(/\.flow$/, "")}'`
+        : n.role === "feed-flow"
+          ? `the flow of '${n.name.replace(/\.flow$/, "")}'`
+          : `'${n.name}'`;
     if (!look(what, n.value)) bad.add(n.name);
     for (const bound of n.between ?? []) look(`a bound of '${n.name}'`, bound);
   }

@@ -5,10 +5,15 @@ export const checkSubjects: Rule = (network, report, { nearest }) => {
   const names = (places: readonly { readonly name: string }[]): string[] => places.map((p) => p.name);
   const subjects = {
     "mean-time": { wanted: "outlet", known: ["all", ...names(network.outlets)] },
-    volume: { wanted: "compartment", known: ["all", ...names(network.compartments)] },
+    volume: { wanted: "compartment", known: ["all", ...names([...network.compartments, ...network.groups])] },
     flow: {
       wanted: "compartment, feed or outlet",
-      known: names([...network.feeds, ...network.compartments.filter((c) => c.kind.flows), ...network.outlets]),
+      known: names([
+        ...network.feeds,
+        ...network.compartments.filter((c) => c.kind.flows),
+        ...network.groups,
+        ...network.outlets,
+      ]),
     },
   };
   for (const { what, of, ofAt } of network.checks) {

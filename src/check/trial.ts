@@ -4,6 +4,7 @@ import type { Report } from "../problems/report.js";
 import { nearest } from "../text/nearest.js";
 import { siUnit } from "../units/describe.js";
 import { type Dimension, dimensions, isRatio, over, sameDimension } from "../units/dimension.js";
+import { placeNames } from "./places.js";
 import { sameKind } from "./same-kind.js";
 
 /**
@@ -19,22 +20,17 @@ export function checkTrial(network: Network | undefined, trial: Trial, report: R
 }
 
 function checkPlaces(network: Network, trial: Trial, report: Report): void {
-  const feeds = network.feeds.map((f) => f.name);
-  const compartments = network.compartments.map((c) => c.name);
-  const outlets = network.outlets.map((o) => o.name);
+  const { feeds, outlets, entered, left } = placeNames(network);
   const constants = network.names.filter((n) => n.role === "constant").map((n) => n.name);
-  const members = network.compartments.flatMap(({ name, counts }) =>
-    Array.from({ length: counts.repeat ?? 0 }, (_, i) => `${name}.${i + 1}`),
-  );
   const look = (name: string, at: Parameters<Report>[1], wanted: string, among: readonly string[]): void => {
     if (!among.includes(name))
       report("unknown-place", at, { name, nearest: nearest(name, among), wanted, known: among });
   };
   for (const { at, where } of trial.injections) {
-    look(at, where, "feed or compartment", [...feeds, ...compartments, ...members]);
+    look(at, where, "feed or compartment", [...feeds, ...entered]);
   }
   for (const { at, where } of trial.readings) {
-    look(at, where, "outlet, compartment or feed", [...outlets, ...compartments, ...members, ...feeds]);
+    look(at, where, "outlet, compartment or feed", [...outlets, ...left, ...feeds]);
   }
   for (const [name, value] of trial.flows) look(name, value.at, "feed", feeds);
   for (const [name, value] of trial.with) {

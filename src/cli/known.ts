@@ -37,6 +37,7 @@ export function knownOnDay(network: Network, trial: Trial, of: (plant: Plant) =>
 export function flowThrough(plant: Plant, name: string): number {
   const port = [...plant.outlets, ...plant.feeds].find((p) => p.name === name);
   if (port) return port.flow;
-  const body = name.replace(/\.\d+$/, "");
+  const outlet = plant.network.groups.find((g) => g.name === name)?.outlets[0];
+  const body = outlet ?? name.replace(/\.\d+$/, "");
   return plant.streams.filter((s) => s.role !== "exchange" && s.to === body).reduce((sum, s) => sum + s.flow, 0);
 }

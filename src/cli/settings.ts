@@ -11,12 +11,13 @@ import { UsageError } from "./outcome.js";
  * @throws UsageError where a name is unknown or a value has the wrong dimension
  */
 export function settingsFrom(network: Network, written: readonly string[] = []): Settings {
-  const names = network.names.map((n) => n.name);
+  const settable = network.names.filter((n) => n.role !== "inflow");
+  const names = settable.map((n) => n.name);
   return Object.fromEntries(
     written.map((text) => {
       const equals = text.indexOf("=");
       const name = text.slice(0, equals).trim();
-      const named = network.names.find((n) => n.name === name);
+      const named = settable.find((n) => n.name === name);
       if (equals < 0) throw new UsageError(`'--set ${text}' has no value; write --set name=value`);
       if (!named) throw new UsageError(`there is no '${name}' to set; ${suggest(name, names)}`);
       const { report, problems } = collector();

@@ -89,6 +89,7 @@ export function resolveLocal(
     outlets,
   };
   // A slip in the name of a part is not that nothing enters it, too.
-  if ([...fed].every((to) => isPlace(to, places))) for (const part of parts.values()) unfedInlets(part, fed, report);
+  const slip = parts.size > 0 && [...fed].some((to) => !isPlace(to, places));
+  if (!slip) for (const part of parts.values()) unfedInlets(part, fed, report);
   return local;
 }

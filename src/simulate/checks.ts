@@ -51,13 +51,22 @@ function meanTimes({ feeds, outlets, ...plant }: Plant): Map<string, number> {
 
 function volumeOf({ network, env, volume }: Plant, name: string): number {
   if (name === "all") return volume.total;
+  const part = network.groups.find((g) => g.name === name);
+  if (part) {
+    const members = new Set(part.members);
+    return network.compartments.reduce(
+      (sum, c) => sum + (members.has(c.name) ? c.kind.volume(kindValues(c, env)) : 0),
+      0,
+    );
+  }
   const body = network.compartments.find((c) => c.name === name);
   return body ? body.kind.volume(kindValues(body, env)) : Number.NaN;
 }
 
-/** Through-flow, exchange left out. */
-function flowOf({ feeds, streams }: Plant, name: string): number {
+/** Through-flow, exchange left out; of a part, what enters by all its inlets. */
+function flowOf({ network, feeds, streams }: Plant, name: string): number {
   const feed = feeds.find((f) => f.name === name);
   if (feed) return feed.flow;
-  return streams.reduce((sum, s) => sum + (s.to === name && s.role !== "exchange" ? s.flow : 0), 0);
+  const ways = new Set(network.groups.find((g) => g.name === name)?.inlets ?? [name]);
+  return streams.reduce((sum, s) => sum + (ways.has(s.to) && s.role !== "exchange" ? s.flow : 0), 0);
 }
