@@ -13,10 +13,12 @@ import { statedVolume } from "./stated-volume.js";
 import { checkSubjects } from "./statements.js";
 import { topologyOf } from "./topology.js";
 import { feedsAndOutlets, waysThrough } from "./ways.js";
+import { zoneInlets } from "./zones.js";
 
 const rules: readonly Rule[] = [
   placeNames,
   streamTargets,
+  zoneInlets,
   feedsAndOutlets,
   waysThrough,
   finiteValues,

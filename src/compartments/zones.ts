@@ -1,4 +1,4 @@
-import { choice, column, csv, either, name, named, record, text } from "../schema/documents/common.js";
+import { choice, column, either, name, named, record, text, whole } from "../schema/documents/common.js";
 import type { KeyShape } from "../schema/shape.js";
 import { zonesBody } from "../svg/zones-body.js";
 import type { CompartmentKind, Member, Ports } from "./kind.js";
@@ -16,6 +16,20 @@ const unit = (what: string, example: string): KeyShape => ({
   required: true,
   example,
 });
+
+const csv: KeyShape = {
+  says: "How the file is written, where backmix should not find out by itself.",
+  example: '{decimal: comma, separator: ";", header: 3}',
+  shape: record({
+    decimal: { shape: choice("point", "comma"), says: "What stands before the decimals.", example: "comma" },
+    separator: {
+      shape: text,
+      says: "What stands between columns: `,`, `;`, `tab` or any one character.",
+      example: '";"',
+    },
+    header: { shape: whole(0), says: "The line that holds the headers, counted from 1; 0 where there is none." },
+  }),
+};
 
 /** Many stirred cells and the flows between them, from tables: what is zoned from a computed flow field, say. */
 export const zones: CompartmentKind = {

@@ -41,13 +41,15 @@ export function reconcileFlows(table: FlowTable, terminals: TerminalFlows): Floa
     for (let k = 0; k < flow.length; k++) {
       const change = multiplier[tail[k]] - (head[k] < 0 ? 0 : multiplier[head[k]]);
       flow[k] += weight[k] * change;
-      if (!(flow[k] >= 0)) return "impossible";
+      if (!(flow[k] > gone * table.flow[k])) return "impossible";
     }
   }
   return imbalance(table, flow, tail, head, terminals, lacking) <= enough ? flow : "impossible";
 }
 
 const mostRounds = 6;
+/** A flow of which less than this is left would have to vanish or turn round. */
+const gone = 1e-6;
 /** Relative to what passes a node. */
 const wanted = 4 * Number.EPSILON;
 const enough = 1e-13;

@@ -1,7 +1,7 @@
 import type { Report } from "../problems/report.js";
 import { CellNames, textOf } from "../read/cells.js";
 import type { WideCsv } from "../read/wide-csv.js";
-import { placeOf, type Span } from "../text/source.js";
+import type { Span } from "../text/source.js";
 
 /** The first row that is wrong in one way, and how many more are. */
 class Fault {
@@ -36,7 +36,7 @@ export function readCells(table: WideCsv, factor: number, report: Report): Cells
   const { bytes } = table;
   const names = new CellNames(bytes, table.mostRows);
   const volumes = new Float64Array(table.mostRows);
-  const [nameless, notNumber, negative, twice] = [new Fault(), new Fault(), new Fault(), new Fault()];
+  const [gap, notNumber, negative, twice] = [new Fault(), new Fault(), new Fault(), new Fault()];
   let earlier = -1;
   table.each((b) => {
     // Taken by index: to take an array apart costs more than all the rest.
@@ -44,19 +44,19 @@ export function readCells(table: WideCsv, factor: number, report: Report): Cells
     const idTo = b[1];
     const from = b[2];
     const to = b[3];
-    if (idFrom === idTo) return nameless.note(idFrom || from, idTo || to);
+    if (idFrom === idTo) return gap.note(idFrom || from, idTo || to);
     const cell = names.add(idFrom, idTo);
     if (cell < 0) {
       if (earlier < 0) earlier = -1 - cell;
       return twice.note(idFrom, idTo);
     }
     const volume = table.number(from, to);
-    if (!Number.isFinite(volume)) return notNumber.note(...cellOf(from, to, idFrom, idTo));
+    if (!Number.isFinite(volume)) return from < to ? notNumber.note(from, to) : gap.note(idFrom, idTo);
     if (volume < 0) negative.note(from, to);
     volumes[cell] = volume * factor;
   });
   const faultless = [
-    nameless.clear(table, (_, at) => report("zone-nameless", at, { others: nameless.others })),
+    gap.clear(table, (_, at) => report("zone-incomplete", at, { others: gap.others })),
     notNumber.clear(table, tellNotNumber(notNumber, report)),
     negative.clear(table, (value, at) =>
       report("zone-negative", at, { what: "volume", value, others: negative.others }),
@@ -100,7 +100,7 @@ export function readFlows(table: WideCsv, { names }: Cells, factor: number, repo
   };
   const inlets = new CellNames(bytes);
   const outlets = new CellNames(bytes);
-  const [nameless, notNumber, negative, itself, strange] = [0, 1, 2, 3, 4].map(() => new Fault());
+  const [gap, notNumber, negative, itself, strange] = [0, 1, 2, 3, 4].map(() => new Fault());
   let n = 0;
   const end = (from: number, to: number, terminals: CellNames): number => {
     const cell = names.find(bytes, from, to);
@@ -116,9 +116,10 @@ export function readFlows(table: WideCsv, { names }: Cells, factor: number, repo
     const toTo = b[3];
     const flowFrom = b[4];
     const flowTo = b[5];
-    if (fromFrom === fromTo || toFrom === toTo) return nameless.note(fromFrom || toFrom, fromTo || toTo);
+    if (fromFrom === fromTo || toFrom === toTo) return gap.note(fromFrom || toFrom, fromTo || toTo);
     const flow = table.number(flowFrom, flowTo);
-    if (!Number.isFinite(flow)) return notNumber.note(...cellOf(flowFrom, flowTo, fromFrom, fromTo));
+    if (!Number.isFinite(flow))
+      return flowFrom < flowTo ? notNumber.note(flowFrom, flowTo) : gap.note(fromFrom, fromTo);
     if (flow < 0) return negative.note(flowFrom, flowTo);
     rows.from[n] = end(fromFrom, fromTo, inlets);
     rows.to[n] = end(toFrom, toTo, outlets);
@@ -128,7 +129,7 @@ export function readFlows(table: WideCsv, { names }: Cells, factor: number, repo
     else if (flow > 0) n++;
   });
   const faultless = [
-    nameless.clear(table, (_, at) => report("zone-nameless", at, { others: nameless.others })),
+    gap.clear(table, (_, at) => report("zone-incomplete", at, { others: gap.others })),
     notNumber.clear(table, tellNotNumber(notNumber, report)),
     negative.clear(table, (value, at) => report("zone-negative", at, { what: "flow", value, others: negative.others })),
     itself.clear(table, (name, at) => report("zone-to-itself", at, { name, others: itself.others })),
@@ -139,9 +140,5 @@ export function readFlows(table: WideCsv, { names }: Cells, factor: number, repo
   return { table, from: of(rows.from), to: of(rows.to), flow: of(rows.flow), at: of(rows.at), inlets, outlets };
 }
 
-/** The cell that is no number, or the first of the row where there is nothing in it. */
-const cellOf = (from: number, to: number, rowFrom: number, rowTo: number): [number, number] =>
-  from < to ? [from, to] : [rowFrom, rowTo];
-
 const tellNotNumber = (fault: Fault, report: Report) => (text: string, at: Span) =>
-  report("cell-not-number", at, { text, row: placeOf(at).line, others: fault.others });
+  report("zone-not-number", at, { text, others: fault.others });

@@ -106,7 +106,8 @@ export function zoneStreams(name: string, to: Tree | undefined, zones: ZoneTable
       streams.push({ to: value.text, at: value.at, split, leaves: key.text });
     }
   }
-  for (const { name: outlet, at } of outlets) {
+  const allKnown = to.entries.every(({ key }) => known.includes(key.text));
+  for (const { name: outlet, at } of allKnown ? outlets : []) {
     if (!to.entries.some((e) => e.key.text === outlet))
       report("zone-outlet-open", to.at, { name, outlet, known }, { at, says: "the table names it here" });
   }

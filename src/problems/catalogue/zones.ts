@@ -17,11 +17,17 @@ export const zoneEntries = {
     fix: "take out columns that nothing reads, or join cells that are mixed as one",
     example: { file: "flows.csv", megabytes: 812 },
   }),
-  "zone-nameless": entry({
+  "zone-incomplete": entry({
     severity: "error",
-    says: ({ others }: { others: number }) => `a row lacks the name of its cell${more(others)}`,
-    fix: "give every row the names that its columns ask for, or take the row out",
+    says: ({ others }: { others: number }) => `a name or a number is missing in this row${more(others)}`,
+    fix: "fill it in, or take the row out",
     example: { others: 0 },
+  }),
+  "zone-not-number": entry({
+    severity: "error",
+    says: ({ text, others }: { text: string; others: number }) => `'${text}' is no number${more(others)}`,
+    fix: "write the number alone, its unit stands in the document; with decimal commas, say so: `csv: {decimal: comma}`",
+    example: { text: "ten", others: 0 },
   }),
   "zone-negative": entry({
     severity: "error",
@@ -189,12 +195,5 @@ export const zoneEntries = {
         ? "make the streams to its inlets stand to each other as in the table"
         : "write `follow: inflow` under `flows:` to scale the table to what enters, or correct the one that is wrong",
     example: { name: "core", inlet: "feed", brings: "10 L/min", table: "12 L/min", shares: false },
-  }),
-  "too-many-cells": entry({
-    severity: "error",
-    says: ({ what, cells, most }: { what: string; cells: number; most: number }) =>
-      `the network has ${cells} nodes; this version can ${what} up to ${most}`,
-    fix: "flows, volumes, mean ages and moments are there at any size (`check`, `verify`); else join cells into fewer",
-    example: { what: "compute tracer curves of", cells: 64_002, most: 5000 },
   }),
 } as const;
