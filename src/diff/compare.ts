@@ -72,8 +72,10 @@ export interface Statement {
 
 /** Statements that stand in one list only. */
 export function compareStatements(of: string, before: readonly Statement[], after: readonly Statement[]): Difference[] {
-  const missing = (from: readonly Statement[], list: readonly Statement[]) =>
-    list.filter((s) => !from.some((o) => o.key === s.key));
+  const missing = (from: readonly Statement[], list: readonly Statement[]): Statement[] => {
+    const keys = new Set(from.map((s) => s.key));
+    return list.filter((s) => !keys.has(s.key));
+  };
   return [
     ...missing(before, after).map(
       (s): Difference => ({ what: "added", of, name: "", after: s.text, lineAfter: lineOf(s.at) }),

@@ -21,12 +21,12 @@ export interface Matching {
  * but the name (same body, same neighbours, same values), as long as new pairs tell further ones apart.
  */
 export function matchNames(a: Side, b: Side): Matching {
-  const places = new Map<string, string>();
-  const values = new Map<string, string>();
-  const known = (pairs: ReadonlyMap<string, string>, name: string): string =>
-    [...pairs.values()].includes(name) ? name : "?";
-  const before: Translate = { place: (n) => places.get(n) ?? "?", value: (n) => values.get(n) ?? "?" };
-  const after: Translate = { place: (n) => known(places, n), value: (n) => known(values, n) };
+  const [places, values] = [new Pairs(), new Pairs()];
+  const before: Translate = { place: (n) => places.later(n) ?? "?", value: (n) => values.later(n) ?? "?" };
+  const after: Translate = {
+    place: (n) => (places.isTaken(n) ? n : "?"),
+    value: (n) => (values.isTaken(n) ? n : "?"),
+  };
   pairSame(places, placesOf(a.network), placesOf(b.network));
   pairSame(values, valuesOf(a.network), valuesOf(b.network));
   for (const alike of [false, true]) {
@@ -35,7 +35,26 @@ export function matchNames(a: Side, b: Side): Matching {
       pairAlike(values, valueSigns(a, before), valueSigns(b, after), alike)
     );
   }
-  return { places, values, before: withOwn(before), after: withOwn(after) };
+  return { places: places.all, values: values.all, before: withOwn(before), after: withOwn(after) };
+}
+
+/** Names of two sides, paired. */
+class Pairs {
+  readonly all = new Map<string, string>();
+  private readonly taken = new Set<string>();
+
+  add(earlier: string, later: string): void {
+    this.all.set(earlier, later);
+    this.taken.add(later);
+  }
+
+  later(earlier: string): string | undefined {
+    return this.all.get(earlier);
+  }
+
+  isTaken(later: string): boolean {
+    return this.taken.has(later);
+  }
 }
 
 /** Names without a counterpart as they are, marked: two of them are never the same. */
@@ -56,26 +75,35 @@ const placesOf = ({ feeds, compartments, outlets }: Network): Sorts =>
 const valuesOf = ({ names }: Network): Sorts =>
   new Map(names.filter((n) => n.role !== "feed-flow").map((n) => [n.name, "value"]));
 
-function pairSame(pairs: Map<string, string>, a: Sorts, b: Sorts): void {
-  for (const [name, sort] of a) if (b.get(name) === sort) pairs.set(name, name);
+function pairSame(pairs: Pairs, a: Sorts, b: Sorts): void {
+  for (const [name, sort] of a) if (b.get(name) === sort) pairs.add(name, name);
 }
 
 /** Signs by name. */
 type Signs = ReadonlyMap<string, string>;
 
-/** Pairs one that has the sign of just one other, or the first of several that are all alike; true where it did. */
-function pairAlike(pairs: Map<string, string>, a: Signs, b: Signs, alike: boolean): boolean {
-  const taken = new Set(pairs.values());
-  const left = [...a].filter(([name]) => !pairs.has(name));
-  const right = [...b].filter(([name]) => !taken.has(name));
-  for (const [name, sign] of left) {
-    const others = right.filter(([, s]) => s === sign);
-    const same = left.filter(([, s]) => s === sign);
-    if (others.length !== same.length || (others.length !== 1 && !alike)) continue;
-    pairs.set(name, others[0][0]);
-    return true;
+/** Pairs those that have the sign of just one other, or one of several that are all alike; true where it did. */
+function pairAlike(pairs: Pairs, a: Signs, b: Signs, alike: boolean): boolean {
+  const left = bySign(a, (name) => pairs.later(name) === undefined);
+  const right = bySign(b, (name) => !pairs.isTaken(name));
+  let found = false;
+  for (const [sign, [name, ...twins]] of left) {
+    const [other, ...others] = right.get(sign) ?? [];
+    if (other === undefined || others.length !== twins.length || (twins.length > 0 && !alike)) continue;
+    pairs.add(name, other);
+    found = true;
+    // Of twins one pair at a time: it may tell the others apart.
+    if (twins.length > 0) break;
   }
-  return false;
+  return found;
+}
+
+function bySign(signs: Signs, isOpen: (name: string) => boolean): Map<string, string[]> {
+  const groups = new Map<string, string[]>();
+  for (const [name, sign] of signs) {
+    if (isOpen(name)) groups.set(sign, [...(groups.get(sign) ?? []), name]);
+  }
+  return groups;
 }
 
 /** What each place is but for its name: its sort, its values, and what flows in and out. */

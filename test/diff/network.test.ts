@@ -1,4 +1,4 @@
-import { readdirSync, readFileSync } from "node:fs";
+import { readFileSync } from "node:fs";
 import fc from "fast-check";
 import { describe, expect, test } from "vitest";
 import { compile } from "../../src/compile/compile.js";
@@ -8,6 +8,7 @@ import { figuresOf } from "../../src/diff/figures.js";
 import { diffNetworks, type NetworkDiff } from "../../src/diff/network.js";
 import { type NetworkDocument, parseNetwork } from "../../src/parse/network.js";
 import { scribble, seeded } from "../tidy/scribble.js";
+import { shipped } from "../tidy/shipped.js";
 
 function network(text: string): NetworkDocument {
   const { document, problems } = parseNetwork(text);
@@ -76,13 +77,13 @@ describe("no difference in meaning", () => {
     expect(said(diff(a, a.replace("first: rest", "first: 75 %")))).toEqual([]);
   });
 
-  const shipped = readdirSync("networks/demo")
-    .map((f) => readFileSync(`networks/demo/${f}`, "utf8"))
+  const networks = shipped
+    .map((file) => readFileSync(file, "utf8"))
     .flatMap((text) => parseNetwork(text).document ?? []);
   test("however a network is typed", () => {
-    expect(shipped.length).toBeGreaterThan(3);
+    expect(networks.length).toBeGreaterThan(3);
     fc.assert(
-      fc.property(fc.constantFrom(...shipped), fc.integer(), (n, seed) => {
+      fc.property(fc.constantFrom(...networks), fc.integer(), (n, seed) => {
         const again = network(scribble(n.tree, seeded(seed)).text);
         expect(diffNetworks(n, again).differences).toEqual([]);
       }),

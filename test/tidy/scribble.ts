@@ -21,10 +21,11 @@ export function scribble(tree: MapNode, random: () => number): { text: string; c
   const note = (): string => `# note ${comments++}`;
   const end = (): string => (chance(0.15) ? `${" ".repeat(1 + Math.floor(random() * 6))}${note()}` : "");
   const gap = (pad: string): string[] => [...(chance(0.15) ? [""] : []), ...(chance(0.12) ? [pad + note()] : [])];
-  const scalar = (text: string): string =>
-    /^[\w][\w .+*/%-]*$/.test(text) && !/ #|: /.test(text) && (chance(0.85) || /^\d+$/.test(text))
-      ? text
-      : `'${text.replace(/'/g, "''")}'`;
+  const scalar = (text: string): string => {
+    if (text.includes("\n")) return JSON.stringify(text);
+    const bare = /^[\w][\w .+*/%-]*$/.test(text) && !/ #|: /.test(text);
+    return bare && (chance(0.85) || /^\d+$/.test(text)) ? text : `'${text.replace(/'/g, "''")}'`;
+  };
 
   /** In braces; over several lines and with comments where `pad` is given. */
   const flow = (node: Tree, pad?: string): string => {

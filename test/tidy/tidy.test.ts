@@ -1,4 +1,4 @@
-import { readdirSync, readFileSync } from "node:fs";
+import { readFileSync } from "node:fs";
 import fc from "fast-check";
 import { describe, expect, test } from "vitest";
 import { compile } from "../../src/compile/compile.js";
@@ -8,6 +8,7 @@ import type { MapNode } from "../../src/read/tree.js";
 import { readYaml } from "../../src/read/yaml.js";
 import { sameMeaning, tidy } from "../../src/tidy/tidy.js";
 import { scribble, seeded } from "./scribble.js";
+import { shipped } from "./shipped.js";
 
 const tidied = (text: string): string => {
   const { text: out, problems } = tidy(text);
@@ -16,12 +17,6 @@ const tidied = (text: string): string => {
 };
 
 const treeOf = (text: string): MapNode => readYaml({ path: "x.yaml", text }, collector().report) as MapNode;
-
-const shipped = ["networks/demo", "networks/textbook", "networks/washout", "shared/chemistry"].flatMap((folder) =>
-  readdirSync(folder)
-    .filter((f) => f.endsWith(".yaml"))
-    .map((f) => `${folder}/${f}`),
-);
 
 describe("layout", () => {
   test("keys in the order of their declaration, two spaces a level, comments where they belong", async () => {
