@@ -5,7 +5,7 @@
 import type { Plant } from "./compile/plant.js";
 import { type FitOptions, type FitOutcome, fit as fitNetwork } from "./fit/fit.js";
 import type { Trial } from "./model/trial.js";
-import { moments as nodeMoments, type NodeMoments } from "./simulate/moments.js";
+import { type NodeMoments, moments as nodeMoments } from "./simulate/moments.js";
 
 export { compile } from "./compile/compile.js";
 export type { Plant, Settings } from "./compile/plant.js";
@@ -16,6 +16,7 @@ export type { Duty } from "./model/duty.js";
 export type { Network } from "./model/network.js";
 export type { Study } from "./model/study.js";
 export type { Trial } from "./model/trial.js";
+export type { Complex } from "./numerics/complex.js";
 export { type IntegrateOptions, type Integration, integrate } from "./numerics/integrate.js";
 export { leastSquares } from "./numerics/least-squares.js";
 export { parseChemistry } from "./parse/chemistry.js";
@@ -29,6 +30,7 @@ export type { Problem } from "./problems/problem.js";
 export { type SteadyState, steadyState } from "./reaction/steady.js";
 export { ode } from "./simulate/ode.js";
 export { tracerResponse } from "./simulate/tracer.js";
+export { transferFunction } from "./transfer/transfer-function.js";
 
 /**
  * Fits the free parameters of the network that a plant was compiled from to tracer trials.

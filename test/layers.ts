@@ -13,6 +13,7 @@ export const layers = [
   "resolve",
   "check",
   "compile",
+  "transfer",
   "parse",
   "tidy",
   "diff",
