@@ -31,7 +31,7 @@ export function check(files: readonly string[], { format }: CheckOptions, { inpu
   const checked = files.map((file): Checked => {
     const text = inputs.text(file);
     if (typeof text !== "string") return { file, kind: undefined, problems: [text], plant: undefined };
-    const { kind, network, problems } = parseAny(text, { path: file, read: inputs.read });
+    const { kind, network, problems } = parseAny(text, inputs.options(file));
     return { file, kind, problems, plant: network && compile(network).plant };
   });
   const problems = checked.flatMap((c) => c.problems);

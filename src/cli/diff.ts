@@ -55,7 +55,7 @@ interface Opened {
 function open(file: string, { inputs }: Context): Opened {
   const text = inputs.text(file);
   if (typeof text !== "string") throw new InputError([text]);
-  const { kind, network, problems } = parseAny(text, { path: file, read: inputs.read });
+  const { kind, network, problems } = parseAny(text, inputs.options(file));
   const tree = readYaml({ path: file, text }, collector().report);
   if (!kind || !tree || hasErrors(problems)) throw new InputError(problems);
   inputs.accept(problems);

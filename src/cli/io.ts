@@ -1,5 +1,16 @@
-import { mkdirSync, readdirSync, readFileSync, readSync, renameSync, rmSync, statSync, writeFileSync } from "node:fs";
-import { dirname, resolve } from "node:path";
+import {
+  existsSync,
+  mkdirSync,
+  readdirSync,
+  readFileSync,
+  readSync,
+  realpathSync,
+  renameSync,
+  rmSync,
+  statSync,
+  writeFileSync,
+} from "node:fs";
+import { basename, dirname, join, resolve } from "node:path";
 import { UsageError } from "./usage.js";
 
 /** 0 done; 1 input wrong; 2 wrong usage; 3 numerics did not converge, or a fault of ours; 130 interrupted. */
@@ -13,6 +24,15 @@ export interface Io {
   exists(path: string): boolean;
   /** Files and folders in a folder; undefined where it cannot be listed. A link to a folder is no folder. */
   list(path: string): readonly { readonly name: string; readonly is: "file" | "folder" | "other" }[] | undefined;
+  /** What a path leads to, links followed, with forward slashes from the root of the machine. */
+  real?(path: string): string;
+  /** Bytes of a file; undefined where there is none. */
+  size?(path: string): number | undefined;
+  /**
+   * The folder that a document's parts and bases may not leave: the repository that it is in, else the current folder
+   * where it lies there, else its own.
+   */
+  library?(path: string): string;
   /** Writes a file whole or not at all; makes its folder. Throws UsageError where it cannot. */
   write(path: string, content: string): void;
   out(text: string): void;
@@ -25,8 +45,16 @@ export interface Io {
 }
 
 /** Files of this machine, relative to `cwd`. */
-export function files(cwd: string): Pick<Io, "read" | "exists" | "list" | "write"> {
+export function files(cwd: string): Pick<Io, "read" | "exists" | "list" | "real" | "size" | "library" | "write"> {
+  const real = (path: string): string => slashed(realPath(resolve(cwd, path)));
   return {
+    real,
+    size: (path) => statSync(resolve(cwd, path), { throwIfNoEntry: false })?.size,
+    library(path) {
+      const own = path === "-" ? real(".") : real(dirname(real(path)));
+      const here = real(".");
+      return repositoryAbove(own) ?? (`${own}/`.startsWith(`${here}/`) ? here : own);
+    },
     read(path) {
       try {
         return path === "-" ? standardInput() : readFileSync(resolve(cwd, path));
@@ -61,6 +89,26 @@ export function files(cwd: string): Pick<Io, "read" | "exists" | "list" | "write
     },
   };
 }
+
+/** Of what is not there, as far as it can be followed. */
+function realPath(path: string): string {
+  try {
+    return realpathSync(path);
+  } catch {
+    const above = dirname(path);
+    return above === path ? path : join(realPath(above), basename(path));
+  }
+}
+
+/** The nearest folder upwards that is under version control. */
+function repositoryAbove(folder: string): string | undefined {
+  for (let at = folder; ; at = dirname(at)) {
+    if (existsSync(join(at, ".git"))) return slashed(at);
+    if (dirname(at) === at) return undefined;
+  }
+}
+
+const slashed = (path: string): string => path.replace(/\\/g, "/");
 
 /** A link counts as what it leads to. */
 const isFile = (path: string): boolean => statSync(path, { throwIfNoEntry: false })?.isFile() === true;

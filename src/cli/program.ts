@@ -37,12 +37,23 @@ export function program(stage: Stage): Command {
   addFit(root, stage);
   addStudy(root, stage);
   addLibraryCommands(root, stage);
+  addOutside(root, stage);
   for (const name of laterCommands) addLater(root, name);
   root.addHelpText(
     "after",
     `\nEvery command reads files, or - for standard input, and takes --json.\nNot in this version: ${laterCommands.join(", ")}.\n\nStart here:\n  backmix study networks/demo/study.yaml`,
   );
   return root;
+}
+
+/** Commands that follow parts and bases; `tidy` looks at its files alone. */
+function addOutside(root: Command, { inputs }: Stage): void {
+  for (const c of root.commands) {
+    if (c.name() !== "tidy") c.option("--allow-outside", "let parts and bases lie outside the library");
+  }
+  root.hook("preAction", (_, command) => {
+    inputs.allowOutside = command.opts().allowOutside === true;
+  });
 }
 
 function addCheck(root: Command, { perform, inputs, io }: Stage): void {

@@ -25,7 +25,7 @@ export function verify(folder: string, { format }: VerifyOptions, { inputs, io }
   const verified = files.map((file): Verified => {
     const text = inputs.text(file);
     if (typeof text !== "string") return { file, kind: undefined, problems: [text], statements: [] };
-    const { kind, network, problems } = parseAny(text, { path: file, read: inputs.read });
+    const { kind, network, problems } = parseAny(text, inputs.options(file));
     const plant = network && compile(network).plant;
     const statements = plant ? runChecks(plant).map((r) => statement(r, plant.network.units)) : [];
     return { file, kind, problems, statements };

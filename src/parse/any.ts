@@ -2,14 +2,14 @@ import { checkTrial } from "../check/trial.js";
 import type { Trial } from "../model/trial.js";
 import type { Problem } from "../problems/problem.js";
 import { collector } from "../problems/report.js";
-import { decodeText } from "../read/decode.js";
+import { openText } from "../read/open.js";
 import { checkShape, documentKind } from "../read/shape.js";
 import { child, type MapNode } from "../read/tree.js";
 import type { DocumentKind } from "../schema/shape.js";
 import { parseChemistry } from "./chemistry.js";
 import { parseDuty } from "./duty.js";
 import { type NetworkDocument, parseNetwork } from "./network.js";
-import { nothingToRead, type ParseOptions, readDocument } from "./parsed.js";
+import { filesOf, type ParseOptions, readDocument } from "./parsed.js";
 import { parseChange, parseStudy } from "./study.js";
 import { parseTrial } from "./trial.js";
 
@@ -53,15 +53,12 @@ export function parseAny(text: string, options: ParseOptions = {}): AnyDocument 
 /** How a trial fits the vessel that it names, or what is wrong with that. */
 function vesselOf(trial: Trial, options: ParseOptions): Problem[] {
   const { report, problems } = collector();
-  const { read = nothingToRead } = options;
   if (trial.vessel === undefined) return problems;
-  const content = read(trial.vessel);
-  if (content === undefined) {
-    const at = trial.vesselAt ?? trial.at;
-    report("file-missing", at, { file: at.source.text.slice(at.from, at.to).replace(/^(["'])(.*)\1$/, "$2") });
-    return problems;
-  }
-  const parsed = parseNetwork(decodeText(content), { ...options, path: trial.vessel });
+  const at = trial.vesselAt ?? trial.at;
+  const text = at.source.text.slice(at.from, at.to).replace(/^(["'])(.*)\1$/, "$2");
+  const content = openText(trial.vessel, { text, at }, filesOf(trial.vessel, options), report);
+  if (content === undefined) return problems;
+  const parsed = parseNetwork(content, { ...options, path: trial.vessel });
   if (!parsed.document) return parsed.problems;
   checkTrial(parsed.document, trial, report);
   return problems;

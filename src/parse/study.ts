@@ -2,26 +2,27 @@ import { checkDuty } from "../check/duty.js";
 import { checkTrial } from "../check/trial.js";
 import type { ChangeDocument, Rival, Study } from "../model/study.js";
 import { collector, hasErrors, type Report } from "../problems/report.js";
-import { decodeText } from "../read/decode.js";
+import type { Files } from "../read/files.js";
+import { openText } from "../read/open.js";
 import { beside } from "../read/paths.js";
 import { checkShape } from "../read/shape.js";
 import { child, itemsOf, type MapNode, type ScalarNode, textOf } from "../read/tree.js";
 import { readYaml } from "../read/yaml.js";
 import { parseDuty } from "./duty.js";
 import { parseNetwork } from "./network.js";
-import { nothingToRead, type Parsed, type ParseOptions, parseDocument, type Read, type Reading } from "./parsed.js";
+import { filesOf, type Parsed, type ParseOptions, parseDocument, type Reading } from "./parsed.js";
 import { parseTrial } from "./trial.js";
 
 /** Reads a study and every document that it names; problems of all of them together, file by file. */
 export function parseStudy(text: string | Reading, options: ParseOptions = {}): Parsed<Study> {
   const path = options.path ?? "study.yaml";
-  const read = options.read ?? nothingToRead;
+  const files = filesOf(path, options);
   return parseDocument("study", text, { ...options, path }, (tree, report, adopt) => {
     const open = <T>(
       key: string,
       parse: (text: string, options: ParseOptions) => Parsed<T>,
     ): (T & { file: string })[] =>
-      filesUnder(tree, key, read, report).flatMap(({ file, content }) => {
+      filesUnder(tree, key, files, report).flatMap(({ file, content }) => {
         const parsed = parse(content, { ...options, path: file });
         adopt(parsed.problems);
         return parsed.document ? [{ ...parsed.document, file }] : [];
@@ -62,13 +63,12 @@ interface NamedFile {
   readonly content: string;
 }
 
-function filesUnder(tree: MapNode, key: string, read: Read, report: Report): NamedFile[] {
+function filesUnder(tree: MapNode, key: string, files: Files, report: Report): NamedFile[] {
   const named = itemsOf(child(tree, key)).filter((item): item is ScalarNode => item.type === "scalar");
   return named.flatMap((item) => {
     const file = beside(item.at.source.path, item.text);
-    const content = read(file);
-    if (content === undefined) report("file-missing", item.at, { file: item.text });
-    return content === undefined ? [] : [{ file, content: decodeText(content) }];
+    const content = openText(file, item, files, report);
+    return content === undefined ? [] : [{ file, content }];
   });
 }
 

@@ -1,6 +1,6 @@
 import type { Report } from "../problems/report.js";
-import { decodeText } from "../read/decode.js";
-import { type Files, isInside, largestDocument } from "../read/files.js";
+import { type Files, isInside } from "../read/files.js";
+import { openText } from "../read/open.js";
 import { beside } from "../read/paths.js";
 import type { MapNode, ScalarNode } from "../read/tree.js";
 import { readYaml } from "../read/yaml.js";
@@ -17,18 +17,12 @@ const deepest = 50;
 export function openNamed(node: ScalarNode, as: Use["as"], files: Files, report: Report): MapNode | undefined {
   const file = beside(node.at.source.path, node.text);
   const circle = circleTo(file, node.at.source, files);
-  const megabytes = Math.ceil((files.size?.(file) ?? 0) / 1024 ** 2);
   if (circle) report("circular-use", node.at, { circle });
   else if (usesOf(node.at.source).length >= deepest) report("use-too-deep", node.at, { limit: deepest });
   else if (!isInside(files, file)) report("outside-library", node.at, { file: node.text, root: files.root ?? "." });
-  else if (megabytes * 1024 ** 2 > largestDocument) {
-    report("file-too-large", node.at, { megabytes });
-  } else {
-    const content = files.read(file);
-    if (content !== undefined) {
-      return readYaml({ path: file, text: decodeText(content), usedBy: { as, at: node.at } }, report);
-    }
-    report("file-missing", node.at, { file: node.text });
+  else {
+    const text = openText(file, node, files, report);
+    return text === undefined ? undefined : readYaml({ path: file, text, usedBy: { as, at: node.at } }, report);
   }
   return undefined;
 }
