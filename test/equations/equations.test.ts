@@ -97,13 +97,13 @@ describe("balances", () => {
 
 describe("the page", () => {
   test("of a vessel with all there is", async () => {
-    await expect(`${equationsMarkdown(plantOf(vessel))}\n`).toMatchFileSnapshot("vessel.md");
+    await expect(`${equationsMarkdown(plantOf(vessel))}\n`).toMatchFileSnapshot("vessel.txt");
   });
 
   test("of the demo vessel", async () => {
     const path = "networks/demo/both.yaml";
     const page = equationsMarkdown(plantOf(readFileSync(path, "utf8"), path));
-    await expect(`${page}\n`).toMatchFileSnapshot("demo.md");
+    await expect(`${page}\n`).toMatchFileSnapshot("demo.txt");
   });
 
   test("every dollar sign has its other one, every brace too", () => {
