@@ -38,6 +38,33 @@ test("file-too-large", () => {
   `);
 });
 
+/** Nor is half a gigabyte. */
+test("table-too-large", () => {
+  const text = readFileSync(new URL("zone-twice.yaml", folder), "utf8");
+  const large = new Uint8Array(501 * 1024 * 1024);
+  const { problems } = parseAny(text, { path: "large.yaml", read: () => large });
+  for (const p of problems) seen.add(p.code);
+  expect(printProblems(problems.slice(0, 1))).toMatchInlineSnapshot(`
+    "zone-twice.csv:1:1 table-too-large: 'zone-twice.csv' has 501 MB; a table may have 500 MB
+      fix: take out columns that nothing reads, or join cells that are mixed as one"
+  `);
+});
+
+/** Without links to folders nothing goes so deep. */
+test("use-too-deep", () => {
+  const use = (n: number) => `network: A\nformat: 1\nbased-on: a${n}.yaml\nchange: {constants: {k: 1}}\n`;
+  const read = (path: string) => use(Number(/\d+/.exec(path)?.[0]) + 1);
+  const { problems } = parseAny(use(1), { path: "a0.yaml", read });
+  for (const p of problems) seen.add(p.code);
+  expect(printProblems(problems).split("\n").slice(0, 5).join("\n")).toMatchInlineSnapshot(`
+    "a50.yaml:3:11 use-too-deep: files lead to files more than 50 deep
+      3 | based-on: a51.yaml
+        |           ^^^^^^^^
+      base of a49.yaml:3:11
+      base of a48.yaml:3:11"
+  `);
+});
+
 test("every code that a file can show has a broken example, named by it", () => {
   const ofFiles = Object.keys(catalogue).filter((code) => !(code in runEntries) && !(code in libraryEntries));
   expect(ofFiles.filter((code) => !seen.has(code))).toEqual([]);

@@ -19,11 +19,18 @@ function printProblem({ code, severity, message, fix, at, also }: Problem, paint
   const word = severity === "warning" ? `warning ${code}` : code;
   const kind = severity === "warning" ? paint.warning : paint.error;
   const lines = [`${paint.place(placeText(at))} ${kind(word)}: ${harmless(message)}`, ...marked(at, kind)];
-  for (const use of usesOf(at.source)) lines.push(`  ${chainWord[use.as]} ${paint.place(placeText(use.at))}`);
+  const uses = usesOf(at.source);
+  uses.forEach((use, i) => {
+    if (i < fewUses || i === uses.length - 1) lines.push(`  ${chainWord[use.as]} ${paint.place(placeText(use.at))}`);
+    else if (i === fewUses) lines.push("  …");
+  });
   if (also) lines.push(`${paint.place(placeText(also.at))} ${harmless(also.says)}`, ...marked(also.at, kind));
   lines.push(`  ${paint.fix("fix:")} ${harmless(fix)}`);
   return lines.join("\n");
 }
+
+/** So many files of a long chain are shown, and the last. */
+const fewUses = 5;
 
 /** What the file above is to the place that names it. */
 const chainWord = { part: "used by", base: "base of" } as const;

@@ -5,7 +5,7 @@ import type { Named } from "../model/network.js";
 import type { Value } from "../model/value.js";
 import { collector, type Report } from "../problems/report.js";
 import { child, type Tree, textOf } from "../read/tree.js";
-import { type Dimension, type DimensionName, dimensions } from "../units/dimension.js";
+import { type Dimension, type DimensionName, dimensions, sameDimension } from "../units/dimension.js";
 import { type Declared, declareNames } from "./declare.js";
 import { dependencyOrder } from "./dependency-order.js";
 import type { Instance } from "./part.js";
@@ -43,7 +43,8 @@ export function resolveNames(instances: readonly Instance[], report: Report): Re
   }
   const values = new Map<number, Value>();
   for (const slot of order) {
-    const { node, wanted, prefix, name, role } = declared[slot];
+    const { node, prefix, name, role } = declared[slot];
+    const wanted = replacedDimension(declared[slot], scope) ?? declared[slot].wanted;
     const value = role === "inflow" ? undefined : resolveValue(node, wanted, scope(prefix), report);
     if (!value) continue;
     values.set(slot, value);
@@ -59,13 +60,15 @@ export function resolveNames(instances: readonly Instance[], report: Report): Re
   return { names, inflows: declared.filter((d) => d.role === "inflow"), needs, slots, scope };
 }
 
-/** What a `with:` gives must be of the kind that the part itself has there. */
+/** How a value measures that a `with:` replaces: what it gives must be alike. Unknown where that needs later names. */
+function replacedDimension({ replaces }: Declared, scope: (prefix: string) => Scope): Dimension | undefined {
+  return replaces && resolveValue(replaces.node, "any", scope(replaces.prefix), collector().report)?.dimension;
+}
+
+/** The same once all names are known. */
 function sameAsReplaced(d: Declared, value: Value, scope: (prefix: string) => Scope, report: Report): void {
-  if (!d.replaces) return;
-  const own = resolveValue(d.replaces.node, "any", scope(d.replaces.prefix), collector().report);
-  if (own?.dimension.some((x, i) => x !== value.dimension[i])) {
-    resolveValue(d.node, own.dimension, scope(d.prefix), report);
-  }
+  const own = replacedDimension(d, scope);
+  if (own && !sameDimension(own, value.dimension)) resolveValue(d.node, own, scope(d.prefix), report);
 }
 
 function details(

@@ -46,7 +46,8 @@ export function openParts(tree: MapNode, files: Files, report: Report): Instance
   const opened = { files: 0 };
   const root = open(tree, "", new Map(), files, report, opened);
   if (bodiesOf(root) > mostBodies || opened.files > mostFiles) {
-    report("too-many-bodies", child(tree, "compartments")?.at ?? tree.at, { limit: mostBodies });
+    const at = tree.entries.find((e) => e.key.text === "compartments")?.key.at ?? tree.at;
+    report("too-many-bodies", at, { limit: mostBodies });
     return { ...root, parts: new Map() };
   }
   return root;

@@ -114,7 +114,9 @@ export const reuseEntries = {
   "circular-flow": entry<{ inlet: string; circle: readonly string[] }>({
     severity: "error",
     says: ({ inlet, circle }) =>
-      `the flow into '${inlet}' depends on itself: ${circle.join(" -> ")}, and streams lead back to it`,
+      `the flow into '${inlet}' depends on itself: ${
+        circle.length > 2 ? circle.join(" -> ") : "streams that it sets lead back to it"
+      }`,
     fix: "inside a recycle, divide streams by shares (`30 %`) in place of flows made of `feed.flow`",
   }),
   "too-many-bodies": entry<{ limit: number }>({
