@@ -76,7 +76,8 @@ function plantOf(network: Network, env: Float64Array, volumes: Float64Array, flo
     exit: spelled.exit,
     groups: stronglyConnected({ size: nodes.size, from, to }),
     streams: streamsOf(network, env, flows),
-    volume: { total, active, dead: total - active },
+    // Rounding is no dead volume.
+    volume: { total, active, dead: total - active > 1e-12 * total ? total - active : 0 },
   };
 }
 

@@ -13,7 +13,7 @@ import { networkModel } from "./network-model.js";
 import { countOf, thinned } from "./observations.js";
 import { prepare } from "./prepare.js";
 import { type Problem as LinearProblem, problemWith } from "./problem.js";
-import type { Fit, FittedReading, FoundOptimum } from "./result.js";
+import type { Fit, FittedParameter, FittedReading, FoundOptimum } from "./result.js";
 import { descend, fully, type SearchResult, searchFrom, type Watch } from "./search.js";
 import { type Settled, settle } from "./settle.js";
 import { type Setup, valuesAt } from "./setup.js";
@@ -119,7 +119,7 @@ function resultOf(setup: Setup, settled: Settled, found: SearchResult): Fit {
   const converged = settled.converged && !found.cancelled;
   const n = setup.coordinates.length;
   return {
-    parameters: estimates.parameters,
+    parameters: found.cancelled ? estimates.parameters.map(unsure) : estimates.parameters,
     values: valuesAt(setup, x),
     nuisance: estimates.nuisance,
     residualSumOfSquares: at.ofData,
@@ -139,6 +139,9 @@ function resultOf(setup: Setup, settled: Settled, found: SearchResult): Fit {
     findings: findingsOf({ setup, estimates, optima, converged, cancelled: found.cancelled }),
   };
 }
+
+/** Where a fit was cut short there is a best so far, and no telling how good it is. */
+const unsure = (p: FittedParameter): FittedParameter => ({ ...p, standardError: undefined, interval95: undefined });
 
 function readingsOf(setup: Setup, { at }: Settled): FittedReading[] {
   return setup.blocks.map((block, b) => {

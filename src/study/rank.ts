@@ -13,11 +13,12 @@ export interface Standing {
  * @see K. P. Burnham & D. R. Anderson, Model Selection and Multimodel Inference, 2nd ed., Springer (2002), section 2.9
  */
 export function standings(fits: readonly (Fit | undefined)[]): Standing[] {
-  const best = Math.min(...fits.map((f) => (f && Number.isFinite(f.aicc) ? f.aicc : Number.POSITIVE_INFINITY)));
-  const raw = fits.map((f) => (f && Number.isFinite(f.aicc) ? Math.exp(-(f.aicc - best) / 2) : 0));
+  const counts = (f: Fit | undefined): f is Fit => f !== undefined && !f.stopped && Number.isFinite(f.aicc);
+  const best = Math.min(...fits.map((f) => (counts(f) ? f.aicc : Number.POSITIVE_INFINITY)));
+  const raw = fits.map((f) => (counts(f) ? Math.exp(-(f.aicc - best) / 2) : 0));
   const sum = raw.reduce((s, w) => s + w, 0);
   return fits.map((f, i) => ({
-    difference: f ? f.aicc - best : Number.POSITIVE_INFINITY,
+    difference: counts(f) ? f.aicc - best : Number.POSITIVE_INFINITY,
     weight: sum > 0 ? raw[i] / sum : 0,
   }));
 }

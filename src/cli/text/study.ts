@@ -1,3 +1,5 @@
+import type { Fit } from "../../fit/result.js";
+import type { Problem } from "../../problems/problem.js";
 import { chance, estimateLine } from "../../report/digits.js";
 import type { StudyResult } from "../../study/result.js";
 import { formatNumber } from "../../units/format.js";
@@ -28,11 +30,17 @@ function rankingTable({ ranking }: StudyResult): string {
     [{ title: "rival" }, right("AICc above the best"), right("weight"), { title: "" }],
     ranking.map(({ rival, fit, standing, survives, problems }) => [
       rival.network.title,
-      fit ? formatNumber(standing.difference, 4) : "",
-      fit ? chance(standing.weight) : "",
-      fit ? (survives ? "" : "ruled out") : `no fit: ${problems[0]?.message ?? "interrupted"}`,
+      fit && !fit.stopped ? formatNumber(standing.difference, 4) : "",
+      fit && !fit.stopped ? chance(standing.weight) : "",
+      verdict(fit, survives, problems),
     ]),
   );
+}
+
+function verdict(fit: Fit | undefined, survives: boolean, problems: readonly Problem[]): string {
+  if (!fit) return `no fit: ${problems[0]?.message ?? "interrupted"}`;
+  if (fit.stopped) return "interrupted before its end: not compared";
+  return survives ? "" : "ruled out";
 }
 
 function predictionsTable({ predictions }: StudyResult): string {

@@ -6,6 +6,7 @@ import { traitsOf } from "./traits.js";
 /** The answer in about five lines: what is wrong, how sure, what it makes, what a change brings, what is still open. */
 export function answerOf(result: StudyResult): string[] {
   const best = result.ranking[0];
+  if (result.stopped) return [interrupted(result)];
   if (!best?.fit || !best.plant) return ["No network could be fitted to these trials; see the findings."];
   const { lines } = traitsOf(best.plant, best.fit);
   const wrong =
@@ -13,6 +14,11 @@ export function answerOf(result: StudyResult): string[] {
       ? `${capital(lines.join("; "))}.`
       : "No bypass, dead water or quiet zone shows in the best network.";
   return [wrong, sure(result), ...makes(result), ...bestChange(result), open(result)];
+}
+
+function interrupted(result: StudyResult): string {
+  const done = result.ranking.filter((r) => r.fit && !r.fit.stopped).length;
+  return `Interrupted: ${done} of ${result.ranking.length} networks were fitted, so none is ruled out and nothing is concluded.`;
 }
 
 function sure(result: StudyResult): string {
@@ -62,7 +68,8 @@ function bestChange(result: StudyResult): string[] {
   const now = estimateLine(estimate(f.before, undefined, unit));
   const then = estimateLine(estimate(f.value, f.interval95, unit));
   const by = estimateLine(differenceEstimate(f.value - f.before, f.difference95, unit));
-  const sure = f.probabilityBetter === undefined ? "" : `; better in ${chance(f.probabilityBetter)} of the draws`;
+  const sure =
+    f.probabilityBetter === undefined ? "" : `; it is the better one in ${chance(f.probabilityBetter)} of the draws`;
   return [`${c.change.title}: ${f.name} from ${now} to ${then}, by ${by}${sure}.`];
 }
 
