@@ -1,7 +1,7 @@
 import { orders } from "../compartments/block.js";
 import type { Plant } from "../compile/plant.js";
-import { gainSeries } from "../transfer/gain.js";
-import { NodeEquations } from "../transfer/node-equations.js";
+import { gainColumns } from "../transfer/gain.js";
+import { SteadyEquations } from "../transfer/steady-equations.js";
 
 /** Of the residence time at a node's outflow, for a unit of tracer put in: exact, no curve is summed. */
 export interface NodeMoments {
@@ -20,46 +20,39 @@ export interface NodeMoments {
  * @param entry node into which a unit of tracer is put
  */
 export function moments(plant: Plant, entry: number): NodeMoments[] {
-  const { nodes } = plant;
-  const n = nodes.length;
-  const gains = nodes.map(gainSeries);
-  const equations = new NodeEquations(plant);
-  equations.gainRe.set(gains.map((g) => g[0]));
-  if (!equations.factor()) return nodes.map(() => momentsOf([0, 0, 0, 0], 0));
-  const nothing = new Float64Array(n);
+  const { size, inflow } = plant.columns;
+  const gains = gainColumns(plant);
+  const equations = new SteadyEquations(plant);
   const leaving: Float64Array[] = [];
   const entering: Float64Array[] = [];
   for (let k = 0; k < orders; k++) {
-    const c = nodes.map((_, i) => {
-      let sum = 0;
-      for (let j = 1; j <= k; j++) if (Number.isFinite(gains[i][j])) sum += gains[i][j] * entering[k - j][i];
-      return sum;
-    });
-    const put = k === 0 && nodes[entry].inflow > 0 ? 1 / nodes[entry].inflow : 0;
+    const c = new Float64Array(size);
+    for (let j = 1; j <= k; j++) addFinite(c, gains[j], entering[k - j]);
+    const put = k === 0 && inflow[entry] > 0 ? 1 / inflow[entry] : 0;
     c[entry] += put;
-    const solved = Float64Array.from(c);
-    equations.solve(solved, nothing.fill(0));
-    const mean = equations.entering(solved);
+    if (!equations.solve(c)) return Array.from(c, () => momentsOf(0, 0, 0, 0, 0));
+    const mean = equations.entering(c);
     mean[entry] += put;
-    leaving.push(solved);
+    leaving.push(c);
     entering.push(mean);
   }
   const finite = finiteOrders(plant, gains, entering[0]);
-  return nodes.map(({ inflow }, i) =>
-    momentsOf(
-      leaving.map((c) => c[i] * inflow),
-      finite[i],
-    ),
-  );
+  const [c0, c1, c2, c3] = leaving;
+  return Array.from(inflow, (q, i) => momentsOf(c0[i] * q, c1[i] * q, c2[i] * q, c3[i] * q, finite[i]));
+}
+
+/** c += gain x, where the gain is finite. */
+function addFinite(c: Float64Array, gain: Float64Array, x: Float64Array): void {
+  for (let i = 0; i < c.length; i++) if (Number.isFinite(gain[i])) c[i] += gain[i] * x[i];
 }
 
 /** How many orders are finite at each node: the fewest of its own and of what tracer passed before. */
 function finiteOrders(plant: Plant, gains: readonly Float64Array[], passing: Float64Array): Uint8Array {
   const { from, to, flow } = plant;
-  const finite = Uint8Array.from(gains, (g, i) => {
-    const first = g.findIndex((x) => !Number.isFinite(x));
-    return first < 0 || !(passing[i] > 0) ? orders : first;
-  });
+  const finite = new Uint8Array(passing.length).fill(orders);
+  for (let k = orders - 1; k > 0; k--) {
+    for (let i = 0; i < finite.length; i++) if (!Number.isFinite(gains[k][i]) && passing[i] > 0) finite[i] = k;
+  }
   if (finite.every((f) => f === orders)) return finite;
   for (let changed = true; changed; ) {
     changed = false;
@@ -72,7 +65,7 @@ function finiteOrders(plant: Plant, gains: readonly Float64Array[], passing: Flo
   return finite;
 }
 
-function momentsOf([a0, a1, a2, a3]: readonly number[], finite: number): NodeMoments {
+function momentsOf(a0: number, a1: number, a2: number, a3: number, finite: number): NodeMoments {
   if (!(a0 > 0)) return { share: 0, mean: Number.NaN, variance: Number.NaN, skewness: undefined };
   const mean = finite > 1 ? -a1 / a0 : Number.POSITIVE_INFINITY;
   if (finite < 3) return { share: a0, mean, variance: Number.POSITIVE_INFINITY, skewness: undefined };

@@ -1,12 +1,9 @@
 import { type Block, orders } from "../compartments/block.js";
-import { Part, type PlantNode } from "../compile/plant.js";
+import { Part, type Plant, type PlantNode } from "../compile/plant.js";
 import { type Complex, complex } from "../numerics/complex.js";
-import { type Taylor, taylor, variable } from "../numerics/taylor.js";
 
 const { of, add, divide, exp, scale } = complex;
 const one = of(1);
-const series = taylor(orders);
-const s1 = variable(orders);
 
 /** What a node makes of tracer that passes it: outflow = G(s) times the mean of what enters. s in 1/s. */
 export function gain({ part, volume, inflow, block }: PlantNode, s: Complex): Complex {
@@ -23,17 +20,21 @@ export function gain({ part, volume, inflow, block }: PlantNode, s: Complex): Co
   }
 }
 
-/** Its coefficients in powers of s, orders 0 to 3; infinite from the order on at which moments are. */
-export function gainSeries({ part, volume, inflow, block }: PlantNode): Taylor {
-  if (!(inflow > 0)) return series.of(0);
-  switch (part) {
-    case Part.Cell:
-      return series.divide(series.of(1), series.add(series.of(1), series.scale(s1, volume / inflow)));
-    case Part.Delay:
-      return series.exp(series.scale(s1, -volume / inflow));
-    case Part.Joint:
-      return series.of(1);
-    case Part.Block:
-      return (block as Block).series(inflow);
+/** The coefficients of every node's gain, one column per order; infinite from the order on at which moments are. */
+export function gainColumns(plant: Plant): readonly Float64Array[] {
+  const { size, part, volume, inflow } = plant.columns;
+  const columns = Array.from({ length: orders }, () => new Float64Array(size));
+  for (let i = 0; i < size; i++) {
+    if (!(inflow[i] > 0)) continue;
+    columns[0][i] = 1;
+    if (part[i] === Part.Joint) continue;
+    const tau = volume[i] / inflow[i];
+    const own = part[i] === Part.Block ? plant.nodes[i].block?.series(inflow[i]) : undefined;
+    for (let k = 1; k < orders; k++) {
+      if (own) columns[k][i] = own[k];
+      // 1 / (1 + s tau), or exp(-s tau)
+      else columns[k][i] = columns[k - 1][i] * (part[i] === Part.Cell ? -tau : -tau / k);
+    }
   }
+  return columns;
 }
