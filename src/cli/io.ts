@@ -1,4 +1,6 @@
 import {
+  accessSync,
+  constants,
   existsSync,
   mkdirSync,
   readdirSync,
@@ -33,8 +35,10 @@ export interface Io {
    * where it lies there, else its own.
    */
   library?(path: string): string;
-  /** Writes a file whole or not at all; makes its folder. Throws UsageError where it cannot. */
+  /** Writes a file whole or not at all, into a folder that is there. Throws UsageError where it cannot. */
   write(path: string, content: string): void;
+  /** Makes a folder, and those above it, where they are not there. Throws UsageError where nothing can be written to it. */
+  makeFolder(path: string): void;
   out(text: string): void;
   err(text: string): void;
   /** Is standard error a terminal, so that a line of progress makes sense? */
@@ -45,7 +49,9 @@ export interface Io {
 }
 
 /** Files of this machine, relative to `cwd`. */
-export function files(cwd: string): Pick<Io, "read" | "exists" | "list" | "real" | "size" | "library" | "write"> {
+export function files(
+  cwd: string,
+): Pick<Io, "read" | "exists" | "list" | "real" | "size" | "library" | "write" | "makeFolder"> {
   const real = (path: string): string => slashed(realPath(resolve(cwd, path)));
   return {
     real,
@@ -79,15 +85,44 @@ export function files(cwd: string): Pick<Io, "read" | "exists" | "list" | "real"
       const target = resolve(cwd, path);
       const draft = `${target}.${process.pid}.tmp`;
       try {
-        mkdirSync(dirname(target), { recursive: true });
         writeFileSync(draft, content);
         renameSync(draft, target);
       } catch (e) {
         discard(draft);
-        throw new UsageError(`'${path}' cannot be written: ${(e as NodeJS.ErrnoException).code ?? String(e)}`);
+        throw new UsageError(`'${path}' cannot be written: ${whyNot(e)}`);
+      }
+    },
+    makeFolder(path) {
+      try {
+        makeFolder(resolve(cwd, path));
+        accessSync(resolve(cwd, path), constants.W_OK);
+      } catch (e) {
+        throw new UsageError(`nothing can be written to the folder '${path}': ${whyNot(e)}`);
       }
     },
   };
+}
+
+/** Folder by folder: Node's own recursive way never ends where a parent says that it is not there. */
+function makeFolder(path: string): void {
+  const there = statSync(path, { throwIfNoEntry: false });
+  if (there && !there.isDirectory()) throw Object.assign(new Error("no folder"), { code: "ENOTDIR" });
+  if (there) return;
+  makeFolder(dirname(path));
+  mkdirSync(path);
+}
+
+function whyNot(e: unknown): string {
+  const code = (e as NodeJS.ErrnoException).code ?? String(e);
+  const words: Record<string, string> = {
+    ENOENT: "there is no such folder",
+    ENOTDIR: "a part of the path is a file",
+    EACCES: "it is not allowed",
+    EROFS: "it is read-only",
+    EISDIR: "it is a folder",
+    ENOSPC: "the disk is full",
+  };
+  return words[code] ?? code;
 }
 
 /** Of what is not there, as far as it can be followed. */

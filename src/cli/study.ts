@@ -20,6 +20,9 @@ export interface StudyOptions {
 /** `study FILE`: every rival fitted, every duty predicted, every change compared, one report. */
 export async function study(file: string, options: StudyOptions, { inputs, io }: Context): Promise<Outcome> {
   const document = inputs.document(file, parseStudy);
+  const folder = options.output ?? (document.out === undefined ? undefined : beside(file, document.out));
+  // Before the work: a folder that cannot be written is no surprise to keep for its end.
+  if (folder !== undefined) io.makeFolder(beside(`${folder}/`, "figures"));
   const progress = progressOn(io);
   const result = runStudy(document, {
     cancelled: io.cancelled,
@@ -31,7 +34,6 @@ export async function study(file: string, options: StudyOptions, { inputs, io }:
   const files = await inputs.list();
   const made = reportOf(result, { files, version, command: commandLine(file, options) });
   const json = { ok: status === 0, ...studyJson(result), answer: made.report.answer };
-  const folder = options.output ?? (document.out === undefined ? undefined : beside(file, document.out));
   // Half a study must not take the place of a whole report.
   const path = folder === undefined || result.stopped ? undefined : save(folder, made, io);
   if (folder !== undefined && path !== undefined) {

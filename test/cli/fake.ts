@@ -40,6 +40,7 @@ export async function backmix(
     exists: (path) => read(path) !== undefined,
     list: (path) => listed(path, files),
     write: (path, content) => void written.set(path, content),
+    makeFolder: () => {},
     out: (text) => {
       out += text;
     },

@@ -1,5 +1,5 @@
 import { type ChildProcess, spawn } from "node:child_process";
-import { mkdtempSync, readdirSync, readFileSync, rmSync, writeFileSync } from "node:fs";
+import { mkdirSync, mkdtempSync, readdirSync, readFileSync, rmSync, writeFileSync } from "node:fs";
 import { tmpdir } from "node:os";
 import { join } from "node:path";
 import { build } from "esbuild";
@@ -72,6 +72,10 @@ describe("the program as a process", () => {
   });
 
   test("writes a file whole and leaves nothing beside it", async () => {
+    const nowhere = await ended(start(["simulate", "tank.yaml", "--pulse", "feed", "-o", "made/curve.csv"]));
+    expect(nowhere.status).toBe(2);
+    expect(nowhere.err).toContain("there is no such folder");
+    mkdirSync(join(folder, "made"));
     const { status } = await ended(start(["simulate", "tank.yaml", "--pulse", "feed", "-o", "made/curve.csv"]));
     expect(status).toBe(0);
     expect(readdirSync(join(folder, "made"))).toEqual(["curve.csv"]);
