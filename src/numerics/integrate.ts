@@ -1,4 +1,7 @@
+import type { Pattern } from "./linear-solver.js";
 import { type Halt, integrateByOdex, type StretchResult } from "./odex.js";
+import { radauIntegrator, type StiffResult, type StiffStretch } from "./stiff.js";
+import { type MethodUsed, methodRace } from "./stiff-switch.js";
 
 export interface IntegrateOptions {
   /** Writes dy/dt at (t, y) into dy. Both arrays are reused: copy what must be kept. */
@@ -8,8 +11,15 @@ export interface IntegrateOptions {
   readonly from: number;
   /** May lie before `from`: time then runs backwards. */
   readonly to: number;
-  /** "auto" takes the non-stiff method. */
-  readonly method?: "auto" | "nonstiff";
+  /** "auto", the default, begins non-stiff and changes as often as the other method gets on at least twice as fast. */
+  readonly method?: "auto" | "nonstiff" | "stiff";
+  /**
+   * For the stiff method: writes d dy_i / d y_j into entries that are 0 before, row by row as in `pattern`, or n x n row-major
+   * without one. Left out: by differences. One that is off costs steps, not accuracy.
+   */
+  readonly jacobian?: (t: number, y: Float64Array, entries: Float64Array) => void;
+  /** Where the Jacobian may have entries. Without it: everywhere, at a cost that grows with n^3. */
+  readonly pattern?: Pattern;
   /** Relative tolerance of a step, default 1e-9; under 1e-14 it is taken as 1e-14. */
   readonly relative?: number;
   /** Absolute tolerance, in the unit of the state, one for all or one per component; default 1e-12. */
@@ -32,14 +42,24 @@ export interface Integration {
   readonly end: IntegrateEnd;
   /** State at `to`, or where the run stopped. */
   readonly last: Float64Array;
-  readonly stats: { readonly steps: number; readonly rejected: number; readonly rhs: number };
+  readonly stats: {
+    readonly steps: number;
+    readonly rejected: number;
+    readonly rhs: number;
+    readonly jacobians: number;
+    readonly factorizations: number;
+    /** Which method made the steps. */
+    readonly method: MethodUsed;
+  };
 }
 
 /**
- * Solves dy/dt = rhs(t, y) by variable-order extrapolation (non-stiff), restarted at every stop.
+ * Solves dy/dt = rhs(t, y), restarted at every stop: by variable-order extrapolation where it is not stiff, by Radau IIA
+ * where it is.
  *
  * At a stop the side before sees only the value before and the side after only the value after, whichever way the
- * right-hand side decides at the stop itself. Outputs between steps are interpolated to the same tolerance.
+ * right-hand side decides at the stop itself. Outputs between steps are interpolated to the same tolerance, and what they
+ * give does not depend on which others are asked.
  *
  * A right-hand side that gives a non-finite number inside a trial step makes the step smaller; where no step is small enough
  * the end says "not-finite". Failure is a value: the outputs reached so far are kept.
@@ -54,13 +74,14 @@ export function integrate(o: IntegrateOptions): Integration {
   const keep = (state: Float64Array): void => {
     states.push(state.slice());
   };
-  const stats = { steps: 0, rejected: 0, rhs: 0 };
+  const stats = { steps: 0, rejected: 0, rhs: 0, jacobians: 0, factorizations: 0 };
   const finish = (end: IntegrateEnd): Integration => {
-    return { times: Float64Array.from(wanted.slice(0, states.length)), states, end, last: y, stats };
+    const times = Float64Array.from(wanted.slice(0, states.length));
+    return { times, states, end, last: y, stats: { ...stats, method: method.used() } };
   };
-  if (!y.every(Number.isFinite)) return finish({ stopped: o.from, why: "not-finite" });
-
   const relative = Math.max(o.relative ?? 1e-9, 1e-14);
+  const method = methodOf(o, y.length, relative);
+  if (!y.every(Number.isFinite)) return finish({ stopped: o.from, why: "not-finite" });
   const floor = 1e-150; // a tolerance of 0 would divide 0 by 0 where a state is 0
   const absolute =
     typeof o.absolute === "object"
@@ -75,15 +96,28 @@ export function integrate(o: IntegrateOptions): Integration {
     while (count < wanted.length && (to - wanted[count]) * direction >= 0) count++;
     const outputs = wanted.slice(states.length, count);
     const stretch = { rhs: o.rhs, from, to, relative, absolute, maxSteps: maxSteps - stats.steps, outputs };
-    const result: StretchResult = integrateByOdex(stretch, y, keep);
+    const result = method.run(stretch, y, keep);
     stats.steps += result.steps;
     stats.rejected += result.rejected;
     stats.rhs += result.rhs;
+    stats.jacobians += result.jacobians ?? 0;
+    stats.factorizations += result.factorizations ?? 0;
     if (result.halt !== undefined) return finish({ stopped: result.t, why: result.halt });
     from = to;
   }
   while (states.length < wanted.length) keep(y);
   return finish("reached");
+}
+
+interface Method {
+  run(p: StiffStretch, y: Float64Array, output: (y: Float64Array) => void): StretchResult & Partial<StiffResult>;
+  used(): MethodUsed;
+}
+
+function methodOf(o: IntegrateOptions, size: number, relative: number): Method {
+  if (o.method === "nonstiff") return { run: integrateByOdex, used: () => "nonstiff" };
+  const stiff = () => radauIntegrator({ ...o, size }, relative);
+  return o.method === "stiff" ? { run: stiff(), used: () => "stiff" } : methodRace(stiff);
 }
 
 /** The stops strictly between, sorted in the direction of time, each once, none closer to its neighbour than rounding allows. */

@@ -13,12 +13,16 @@ export interface Stretch {
   readonly maxSteps: number;
   /** Times inside the stretch, in its direction, at which the state is wanted. */
   readonly outputs: ArrayLike<number>;
+  /** Work, in evaluations of the right-hand side, after which it pauses at the next accepted step; default: never. */
+  readonly budget?: number;
 }
 
 export interface StretchResult {
   /** Where it ended: `to`, or the last accepted time. */
   readonly t: number;
   readonly halt?: Halt;
+  /** The budget is used up; `t` is where to go on. */
+  readonly paused?: true;
   readonly steps: number;
   readonly rejected: number;
   readonly rhs: number;
@@ -26,7 +30,7 @@ export interface StretchResult {
 
 /** Thrown through `odex`, which has no other way out of a step, and caught below. */
 class Halted {
-  constructor(readonly why: Halt) {}
+  constructor(readonly why: Halt | "paused") {}
 }
 
 /** Size of what stands for a derivative that is not a number: so steep that the error test must reject the step. */
@@ -50,6 +54,7 @@ export function integrateByOdex(p: Stretch, y: Float64Array, output: (y: Float64
   const span = p.to - p.from;
   const nudge = Math.max(Math.abs(p.from), Math.abs(p.to), Math.abs(span)) * 2 ** -52;
   const last = Math.abs(span) - nudge;
+  const budget = p.budget ?? Number.POSITIVE_INFINITY;
   const state = new Float64Array(n);
   const dy = new Float64Array(n);
   const row = new Float64Array(n);
@@ -88,12 +93,13 @@ export function integrateByOdex(p: Stretch, y: Float64Array, output: (y: Float64
   solver.relativeTolerance = p.relative;
   solver.absoluteTolerance = typeof p.absolute === "number" ? p.absolute : [...p.absolute];
   solver.maxSteps = Number.MAX_SAFE_INTEGER;
-  solver.denseOutput = p.outputs.length > 0;
+  // Always, for it bears on step sizes: the path must not depend on the times asked.
+  solver.denseOutput = true;
   // Its look ahead for instability compares slopes by their ratio: near a steady state that is rounding over rounding, and it
   // halves the step for ever. The error test alone is enough.
   solver.stabilityCheckCount = 0;
 
-  let halt: Halt | undefined;
+  let halt: Halt | "paused" | undefined;
   let rejected = 0;
   try {
     rhs(0, Array.from(y));
@@ -117,6 +123,7 @@ export function integrateByOdex(p: Stretch, y: Float64Array, output: (y: Float64
       if (dense && !finite) throw new Halted("not-finite");
       gapSeen = false;
       if (steps >= p.maxSteps && x < 1) throw new Halted("too-many-steps");
+      if (evaluations >= budget && x < 1) throw new Halted("paused");
       return;
     });
     rejected = outcome.nReject;
@@ -124,7 +131,9 @@ export function integrateByOdex(p: Stretch, y: Float64Array, output: (y: Float64
     if (!(thrown instanceof Halted)) throw thrown;
     halt = thrown.why;
   }
-  if (halt !== undefined) return { t: p.from + accepted * span, halt, steps, rejected, rhs: evaluations };
+  const t = p.from + accepted * span;
+  if (halt === "paused") return { t, paused: true, steps, rejected, rhs: evaluations };
+  if (halt !== undefined) return { t, halt, steps, rejected, rhs: evaluations };
   for (; next < p.outputs.length; next++) output(y);
   return { t: p.to, steps, rejected, rhs: evaluations };
 }

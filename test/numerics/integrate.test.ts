@@ -32,6 +32,8 @@ function reference(name: string): { problem: IntegrateOptions; solution: number[
   return { problem, solution: file.reference_solution.map(Number) };
 }
 
+const methods = ["nonstiff", "stiff", "auto"] as const;
+
 const furthest = (a: ArrayLike<number>, b: readonly number[]): number =>
   Math.max(...b.map((v, i) => Math.abs(a[i] - v)));
 
@@ -65,33 +67,41 @@ describe("published problems", () => {
   });
 });
 
-describe("outputs", () => {
+describe.each(methods)("outputs, %s", (method) => {
   test("lie on the curve, ends included, wherever they are asked", () => {
     const outputs = Array.from({ length: 301 }, (_, i) => i / 30);
     const rhs = (_t: number, y: Float64Array, dy: Float64Array): void => {
       dy[0] = y[1];
       dy[1] = -y[0];
     };
-    const run = integrate({ rhs, start: [0, 1], from: 0, to: 10, outputs });
+    const run = integrate({ method, rhs, start: [0, 1], from: 0, to: 10, outputs });
     expect(Array.from(run.times)).toEqual(outputs);
     for (const [k, t] of outputs.entries())
       expect(furthest(run.states[k], [Math.sin(t), Math.cos(t)])).toBeLessThan(2e-9);
   });
 
   test("outside the interval are left out; none given means the end", () => {
-    const run = integrate({ rhs: decay, start: [1], from: 0, to: 1, outputs: [-1, 0, 0.5, 1, 2] });
+    const run = integrate({ method, rhs: decay, start: [1], from: 0, to: 1, outputs: [-1, 0, 0.5, 1, 2] });
     expect(Array.from(run.times)).toEqual([0, 0.5, 1]);
-    expect(Array.from(integrate({ rhs: decay, start: [1], from: 0, to: 1 }).times)).toEqual([1]);
+    expect(Array.from(integrate({ method, rhs: decay, start: [1], from: 0, to: 1 }).times)).toEqual([1]);
   });
 
   test("a span of no length gives the start", () => {
-    const run = integrate({ rhs: decay, start: [7], from: 3, to: 3, outputs: [3, 3], stops: [3] });
+    const run = integrate({ method, rhs: decay, start: [7], from: 3, to: 3, outputs: [3, 3], stops: [3] });
     expect(run.states.map((s) => s[0])).toEqual([7, 7]);
     expect(run.end).toBe("reached");
   });
 
   test("time may run backwards, with outputs and stops", () => {
-    const run = integrate({ rhs: decay, start: [Math.exp(-2)], from: 2, to: 0, outputs: [2, 1, 0], stops: [1.5] });
+    const run = integrate({
+      method,
+      rhs: decay,
+      start: [Math.exp(-2)],
+      from: 2,
+      to: 0,
+      outputs: [2, 1, 0],
+      stops: [1.5],
+    });
     expect(Array.from(run.times)).toEqual([2, 1, 0]);
     expect(run.states[1][0]).toBeCloseTo(Math.exp(-1), 9);
     expect(run.states[2][0]).toBeCloseTo(1, 9);
@@ -102,14 +112,14 @@ describe("outputs", () => {
       const rhs = (_t: number, y: Float64Array, dy: Float64Array): void => {
         dy[0] = -y[0] / span;
       };
-      const run = integrate({ rhs, start: [1], from: span, to: 3 * span, outputs: [2 * span, 3 * span] });
+      const run = integrate({ method, rhs, start: [1], from: span, to: 3 * span, outputs: [2 * span, 3 * span] });
       expect(run.states[0][0]).toBeCloseTo(Math.exp(-1), 9);
       expect(run.states[1][0]).toBeCloseTo(Math.exp(-2), 9);
     }
   });
 });
 
-describe("stops", () => {
+describe.each(methods)("stops, %s", (method) => {
   const pulse =
     (inside: (t: number) => boolean) =>
     (t: number, y: Float64Array, dy: Float64Array): void => {
@@ -123,6 +133,7 @@ describe("stops", () => {
     ["closed on the right", (t: number) => t > 50 && t <= 50.001],
   ])("a short pulse is neither stepped over nor smeared: %s", (_name, inside) => {
     const run = integrate({
+      method,
       rhs: pulse(inside),
       start: [0],
       from: 0,
@@ -136,7 +147,7 @@ describe("stops", () => {
   });
 
   test("in any order, doubled or outside, are sorted out", () => {
-    const run = integrate({ rhs: decay, start: [1], from: 0, to: 1, stops: [0.9, 5, 0.2, 0.2, -1, 0, 1] });
+    const run = integrate({ method, rhs: decay, start: [1], from: 0, to: 1, stops: [0.9, 5, 0.2, 0.2, -1, 0, 1] });
     expect(run.last[0]).toBeCloseTo(Math.exp(-1), 9);
   });
 
@@ -144,32 +155,32 @@ describe("stops", () => {
     const rhs = (t: number, _y: Float64Array, dy: Float64Array): void => {
       dy[0] = Math.abs(t - Math.SQRT2);
     };
-    const run = integrate({ rhs, start: [0], from: 0, to: 3, stops: [Math.SQRT2] });
+    const run = integrate({ method, rhs, start: [0], from: 0, to: 3, stops: [Math.SQRT2] });
     expect(run.last[0]).toBeCloseTo((2 + (3 - Math.SQRT2) ** 2) / 2, 13);
     expect(run.stats.rejected).toBe(0);
   });
 });
 
-test("a system that rests is no reason for small steps", () => {
+test.each(methods)("a system that rests is no reason for small steps, %s", (method) => {
   // Rounding keeps the slope of a tank at rest just off 0, and of random sign from one evaluation to the next.
   const rhs = (t: number, y: Float64Array, dy: Float64Array): void => {
     dy[0] = 300 * (1 / 3 - y[0]) + 1e-13 * Math.sign(Math.sin(1e9 * t));
   };
-  const run = integrate({ rhs, start: [1 / 3], from: 0, to: 1, outputs: [0.5, 1] });
+  const run = integrate({ method, rhs, start: [1 / 3], from: 0, to: 1, outputs: [0.5, 1] });
   expect(run.end).toBe("reached");
   expect(run.stats.rhs).toBeLessThan(5000);
 });
 
-describe("failure is an answer", () => {
+describe.each(methods)("failure is an answer, %s", (method) => {
   test("a right-hand side that is NaN at once, with and without outputs", () => {
     const rhs = (_t: number, _y: Float64Array, dy: Float64Array): void => {
       dy[0] = Number.NaN;
     };
-    const run = integrate({ rhs, start: [1], from: 2, to: 5 });
+    const run = integrate({ method, rhs, start: [1], from: 2, to: 5 });
     expect(run.end).toEqual({ stopped: 2, why: "not-finite" });
     expect(run.states).toEqual([]);
     expect(Array.from(run.last)).toEqual([1]);
-    const asked = integrate({ rhs, start: [1], from: 2, to: 5, outputs: [2, 3] });
+    const asked = integrate({ method, rhs, start: [1], from: 2, to: 5, outputs: [2, 3] });
     expect(asked.states.map((s) => s[0])).toEqual([1]);
   });
 
@@ -180,7 +191,7 @@ describe("failure is an answer", () => {
         dy[0] = t > 2 ? bad : 1;
       };
       for (const outputs of [[1, 1.9, 3], undefined]) {
-        const run = integrate({ rhs, start: [0], from: 0, to: 5, ...(outputs ? { outputs } : {}) });
+        const run = integrate({ method, rhs, start: [0], from: 0, to: 5, ...(outputs ? { outputs } : {}) });
         const end = run.end as { stopped: number; why: string };
         expect(end.why).toBe("not-finite");
         expect(end.stopped).toBeCloseTo(2, 6);
@@ -195,7 +206,7 @@ describe("failure is an answer", () => {
     const rhs = (_t: number, y: Float64Array, dy: Float64Array): void => {
       dy[0] = -Math.sqrt(y[0]);
     };
-    const run = integrate({ rhs, start: [1], from: 0, to: 1.99, outputs: [1, 1.99] });
+    const run = integrate({ method, rhs, start: [1], from: 0, to: 1.99, outputs: [1, 1.99] });
     expect(run.end).toBe("reached");
     expect(run.states[0][0]).toBeCloseTo(0.25, 8);
     expect(run.states[1][0]).toBeCloseTo(0.005 ** 2, 8);
@@ -205,24 +216,14 @@ describe("failure is an answer", () => {
     const rhs = (_t: number, y: Float64Array, dy: Float64Array): void => {
       dy[0] = y[0] * y[0];
     };
-    const run = integrate({ rhs, start: [1], from: 0, to: 5, outputs: [0.5, 2] });
+    const run = integrate({ method, rhs, start: [1], from: 0, to: 5, outputs: [0.5, 2] });
     expect(run.end).toMatchObject({ stopped: expect.closeTo(1, 6) });
     expect(run.states.length).toBe(1);
     expect(run.states[0][0]).toBeCloseTo(2, 8);
   });
 
-  test("a stiff system runs out of the steps allowed", () => {
-    const rhs = (t: number, y: Float64Array, dy: Float64Array): void => {
-      dy[0] = -1e6 * (y[0] - Math.cos(t));
-    };
-    const run = integrate({ rhs, start: [1], from: 0, to: 100, maxSteps: 200 });
-    expect(run.end).toMatchObject({ why: "too-many-steps" });
-    expect(run.stats.steps).toBe(200);
-    expect(run.last[0]).toBeCloseTo(1, 3);
-  });
-
   test("a start that is not finite", () => {
-    expect(integrate({ rhs: decay, start: [Number.NaN], from: 0, to: 1 }).end).toEqual({
+    expect(integrate({ method, rhs: decay, start: [Number.NaN], from: 0, to: 1 }).end).toEqual({
       stopped: 0,
       why: "not-finite",
     });
@@ -232,8 +233,24 @@ describe("failure is an answer", () => {
     const rhs = (): void => {
       throw new TypeError("mine");
     };
-    expect(() => integrate({ rhs, start: [1], from: 0, to: 1 })).toThrow(TypeError);
+    expect(() => integrate({ method, rhs, start: [1], from: 0, to: 1 })).toThrow(TypeError);
   });
+});
+
+test("a stiff system runs out of the steps allowed", () => {
+  const rhs = (t: number, y: Float64Array, dy: Float64Array): void => {
+    dy[0] = -1e6 * (y[0] - Math.cos(t));
+  };
+  const problem = { rhs, start: [1], from: 0, to: 100 };
+  const run = integrate({ ...problem, method: "nonstiff", maxSteps: 200 });
+  expect(run.end).toMatchObject({ why: "too-many-steps" });
+  expect(run.stats.steps).toBe(200);
+  expect(run.last[0]).toBeCloseTo(1, 3);
+  for (const method of ["stiff", "auto"] as const) {
+    const short = integrate({ ...problem, method, maxSteps: 5 });
+    expect(short.end).toMatchObject({ why: "too-many-steps" });
+    expect(short.stats.steps).toBe(5);
+  }
 });
 
 test("an absolute tolerance of 0, or one per component, is taken", () => {

@@ -1,0 +1,181 @@
+import type { RadauCoefficients } from "./radau-coefficients.js";
+import type { StiffProblem } from "./stiff-jacobian.js";
+import type { ShiftedSystems } from "./stiff-linear.js";
+import { evaluate, type StepPolynomial } from "./stiff-polynomial.js";
+
+/** How the iteration for the stages ended. */
+export type NewtonEnd = "converged" | "slow" | "diverged" | "not-finite";
+
+/** The stages of one trial step and what they tell. The caller decides about step size, Jacobian and acceptance. */
+export interface RadauStep {
+  readonly coefficients: RadauCoefficients;
+  /** Iterations that are worth their cost. */
+  readonly mostIterations: number;
+  /** What each stage adds to the start; the last is the step itself. */
+  readonly z: Float64Array[];
+  /** Of the last `solve`: iterations, evaluations of the right-hand side, and how fast corrections shrank. */
+  iterations: number;
+  evaluations: number;
+  contraction: number;
+  /** After "slow": the part of the step with which it should converge in time. */
+  cut: number;
+  /**
+   * Simplified Newton iteration for the stages; the systems must be factored for this h.
+   * @param guess polynomial to start from, if its h is not 0
+   * @param scale size of an error of 1, per state
+   * @param wanted error of the iteration in that measure
+   */
+  solve(t: number, h: number, y: Float64Array, scale: Float64Array, guess: StepPolynomial, wanted: number): NewtonEnd;
+  /**
+   * Size of the local error in units of the scale, root mean square; Infinity where it is not finite.
+   * @param f rhs at (t, y)
+   * @param again filters a second time, with one more evaluation: for the first step or after a rejection
+   */
+  error(t: number, h: number, y: Float64Array, f: Float64Array, scale: Float64Array, again: boolean): number;
+}
+
+/**
+ * One step of the s-stage Radau IIA method, in the basis where stages fall apart into one real and some complex systems.
+ * No allocation in `solve` and `error`.
+ * @see E. Hairer, G. Wanner, Solving Ordinary Differential Equations II, 2nd ed., Springer 1996, sec. IV.8
+ */
+export function radauStep({ size: n, rhs }: StiffProblem, k: RadauCoefficients, systems: ShiftedSystems): RadauStep {
+  const s = k.stages;
+  const stages = (): Float64Array[] => Array.from({ length: s }, () => new Float64Array(n));
+  const z = stages();
+  const w = stages(); // T^-1 z
+  const f = stages();
+  const change = stages();
+  const at = new Float64Array(n);
+  const part = new Float64Array(n);
+  const local = new Float64Array(n);
+  const slope = new Float64Array(n);
+  let confidence = 1; // theta / (1 - theta) of the step before
+
+  const step: RadauStep = {
+    coefficients: k,
+    mostIterations: 7 + Math.max(0, (5 * (s - 3)) / 2),
+    z,
+    iterations: 0,
+    evaluations: 0,
+    contraction: 0,
+    cut: 1,
+
+    solve(t, h, y, scale, guess, wanted) {
+      step.iterations = 0;
+      step.evaluations = 0;
+      if (guess.h === 0) {
+        for (let i = 0; i < s; i++) {
+          z[i].fill(0);
+          w[i].fill(0);
+        }
+      } else {
+        for (let i = 0; i < s; i++) {
+          evaluate(guess, t + k.c[i] * h, z[i]);
+          for (let m = 0; m < n; m++) z[i][m] -= y[m];
+        }
+        transform(k.tInverse, s, z, w);
+      }
+      confidence = Math.max(confidence, Number.EPSILON) ** 0.8;
+      step.contraction = 0;
+      let before = 0;
+      let ratioBefore = 0;
+      for (let iteration = 1; iteration <= step.mostIterations; iteration++) {
+        step.iterations = iteration;
+        for (let i = 0; i < s; i++) {
+          for (let m = 0; m < n; m++) at[m] = y[m] + z[i][m];
+          rhs(t + k.c[i] * h, at, f[i]);
+          step.evaluations++;
+        }
+        transform(k.tInverse, s, f, change);
+        const real = k.real / h;
+        for (let m = 0; m < n; m++) change[0][m] -= real * w[0][m];
+        systems.real.solve(change[0]);
+        for (let p = 0; p < k.pairs.length; p++) {
+          const re = k.pairs[p].re / h;
+          const im = k.pairs[p].im / h;
+          const a = 1 + 2 * p;
+          for (let m = 0; m < n; m++) {
+            change[a][m] -= re * w[a][m] - im * w[a + 1][m];
+            change[a + 1][m] -= im * w[a][m] + re * w[a + 1][m];
+          }
+          systems.complex[p].solve(change[a], change[a + 1]);
+        }
+        const size = sizeOf(change, scale);
+        if (!(size < Number.POSITIVE_INFINITY)) return "not-finite";
+        if (iteration > 1) {
+          const ratio = size / before;
+          const theta = iteration === 2 ? ratio : Math.sqrt(ratio * ratioBefore);
+          ratioBefore = ratio;
+          step.contraction = theta;
+          if (theta >= 0.99) return size <= roundingOf(y, scale) ? "converged" : "diverged";
+          confidence = theta / (1 - theta);
+          const left = step.mostIterations - iteration;
+          const expected = (confidence * size * theta ** left) / wanted;
+          if (left > 0 && expected >= 1) {
+            step.cut = 0.8 * Math.max(1e-4, Math.min(20, expected)) ** (-1 / (4 + left));
+            return "slow";
+          }
+        }
+        before = Math.max(size, Number.MIN_VALUE);
+        for (let i = 0; i < s; i++) for (let m = 0; m < n; m++) w[i][m] += change[i][m];
+        transform(k.t, s, w, z);
+        if (confidence * size <= wanted) return "converged";
+      }
+      return "diverged";
+    },
+
+    error(t, h, y, start, scale, again) {
+      part.fill(0);
+      for (let j = 0; j < s; j++) {
+        const weight = k.error[j] / h;
+        for (let m = 0; m < n; m++) part[m] += weight * z[j][m];
+      }
+      for (let m = 0; m < n; m++) local[m] = part[m] + start[m];
+      systems.real.solve(local);
+      const size = norm(local, scale);
+      if (size < 1 || !again || !(size < Number.POSITIVE_INFINITY))
+        return Number.isNaN(size) ? Number.POSITIVE_INFINITY : size;
+      for (let m = 0; m < n; m++) at[m] = y[m] + local[m];
+      rhs(t, at, slope);
+      step.evaluations++;
+      for (let m = 0; m < n; m++) local[m] = part[m] + slope[m];
+      systems.real.solve(local);
+      const filtered = norm(local, scale);
+      return Number.isNaN(filtered) ? size : filtered;
+    },
+  };
+  return step;
+}
+
+/** to_i = sum over j of matrix[i, j] from_j. */
+function transform(matrix: Float64Array, s: number, from: readonly Float64Array[], to: readonly Float64Array[]): void {
+  for (let i = 0; i < s; i++) {
+    const target = to[i];
+    target.fill(0);
+    for (let j = 0; j < s; j++) {
+      const weight = matrix[i * s + j];
+      const source = from[j];
+      for (let m = 0; m < target.length; m++) target[m] += weight * source[m];
+    }
+  }
+}
+
+function sizeOf(stages: readonly Float64Array[], scale: Float64Array): number {
+  let sum = 0;
+  for (const stage of stages) for (let m = 0; m < stage.length; m++) sum += (stage[m] / scale[m]) ** 2;
+  return Math.sqrt(sum / (stages.length * scale.length));
+}
+
+export function norm(v: Float64Array, scale: Float64Array): number {
+  let sum = 0;
+  for (let m = 0; m < v.length; m++) sum += (v[m] / scale[m]) ** 2;
+  return Math.sqrt(sum / v.length);
+}
+
+/** What rounding of the state alone makes of a correction. */
+function roundingOf(y: Float64Array, scale: Float64Array): number {
+  let largest = 0;
+  for (let m = 0; m < y.length; m++) largest = Math.max(largest, Math.abs(y[m]) / scale[m]);
+  return 10 * Number.EPSILON * largest;
+}
