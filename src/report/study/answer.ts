@@ -8,7 +8,7 @@ export function answerOf(result: StudyResult): string[] {
   const best = result.ranking[0];
   if (result.stopped) return [interrupted(result)];
   if (!best?.fit || !best.plant) return ["No network could be fitted to these trials; see the findings."];
-  const { lines } = traitsOf(best.plant, best.fit);
+  const lines = traitsOf(best.plant, best.fit).map((t) => t.line);
   const wrong =
     lines.length > 0
       ? `${capital(lines.join("; "))}.`
@@ -69,7 +69,7 @@ function bestChange(result: StudyResult): string[] {
   const then = estimateLine(estimate(f.value, f.interval95, unit));
   const by = estimateLine(differenceEstimate(f.value - f.before, f.difference95, unit));
   const sure =
-    f.probabilityBetter === undefined ? "" : `; it is the better one in ${chance(f.probabilityBetter)} of the draws`;
+    f.probabilityBetter === undefined ? "" : `; chance of being better ${chance(f.probabilityBetter)}`;
   return [`${c.change.title}: ${f.name} from ${now} to ${then}, by ${by}${sure}.`];
 }
 

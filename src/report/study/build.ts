@@ -135,7 +135,7 @@ function assumptionsOf(result: StudyResult): string[] {
 
 function cautionsOf(result: StudyResult, extrapolated: readonly string[]): CautionTriggers {
   const best = result.ranking[0];
-  const traits = best?.plant && best.fit ? traitsOf(best.plant, best.fit) : undefined;
+  const traits = best?.plant && best.fit ? traitsOf(best.plant, best.fit) : [];
   const reacting = result.study.duties.some((d) => (d.chemistry?.reactions.length ?? 0) > 0);
   const kill = result.study.duties.some((d) => d.report.some((r) => r.what === "log-removal"));
   const radio = result.study.trials.some((t) =>
@@ -146,7 +146,7 @@ function cautionsOf(result: StudyResult, extrapolated: readonly string[]): Cauti
   return {
     disinfection: kill,
     drinkingWater: kill,
-    toxic: reacting && ((traits?.bypass ?? false) || (traits?.dead ?? false)),
+    toxic: reacting && traits.some((t) => t.is === "bypass" || t.is === "dead"),
     radiotracer: radio,
     extrapolated,
   };

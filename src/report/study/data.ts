@@ -2,7 +2,9 @@ import type { Figure } from "../../data/figure.js";
 import type { ReadingMoments } from "../../data/moments.js";
 import type { StudyResult } from "../../study/result.js";
 import { inUnit } from "../../units/unit.js";
+import { chance } from "../digits.js";
 import type { DataQuality, Estimate, ReportFinding } from "../input.js";
+import { secondLook, traitsOf } from "./traits.js";
 
 /** Data quality per reading: grade, why, figures, what each cleaning step did. */
 export function dataQuality(result: StudyResult): DataQuality[] {
@@ -65,8 +67,16 @@ export function findingsOf(result: StudyResult): { findings: ReportFinding[]; no
   const fromFit = (best?.fit?.findings ?? []).map(
     (f): ReportFinding => ({ message: f.message, evidence: evidenceWords(f.evidence), next: f.fix }),
   );
+  const traits = best?.plant && best.fit && !best.fit.stopped ? traitsOf(best.plant, best.fit) : [];
+  const fromTraits = traits.map(
+    (t): ReportFinding => ({
+      message: t.line,
+      evidence: `fitted by '${best.rival.network.title}' to all trials, weight ${chance(best.standing.weight)}`,
+      ...secondLook[t.is],
+    }),
+  );
   const notSupported = [...new Set(result.readings.flatMap(({ moments }) => moments.notSupported))];
-  return { findings: [...fromFit, ...fromData], notSupported };
+  return { findings: [...fromTraits, ...fromFit, ...fromData], notSupported };
 }
 
 const evidenceWords = (evidence: Readonly<Record<string, number | string>>): string =>

@@ -5,10 +5,12 @@ import { drawNetwork } from "../../draw/network.js";
 import type { FittedReading } from "../../fit/result.js";
 import type { Trial } from "../../model/trial.js";
 import type { Ranked, StudyResult } from "../../study/result.js";
+import { dimensions } from "../../units/dimension.js";
 import { differenceInUnit, inUnit, type Unit } from "../../units/unit.js";
-import { estimateLine } from "../digits.js";
+import { estimateWords } from "../digits.js";
 import type { Figure } from "../input.js";
-import { parameterEstimate } from "./estimate.js";
+import { estimate } from "./estimate.js";
+import { intervalOf } from "./interval-of.js";
 import { traitsOf } from "./traits.js";
 
 /** A figure with the name of the file that it is saved under. */
@@ -20,11 +22,12 @@ export interface NamedFigure extends Figure {
 export function vesselFigure(ranked: Ranked, trials: readonly Trial[]): NamedFigure | undefined {
   const { plant, fit, rival } = ranked;
   if (!plant || !fit) return undefined;
+  const units = plant.network.units.unitFor(dimensions.volume);
   const notes = new Map(
     plant.network.compartments.flatMap((c) => {
-      const e = c.values.volume?.expression;
-      const p = e?.type === "name" ? fit.parameters.find((x) => x.name === e.name) : undefined;
-      const words = p?.interval95 && /\((.*)\)/.exec(estimateLine(parameterEstimate(p)))?.[1];
+      const volume = c.values.volume;
+      const known = volume && intervalOf(volume, plant, fit);
+      const words = known && estimateWords(estimate(volume.of(plant.env), known, units)).interval;
       return words ? [[c.name, words] as const] : [];
     }),
   );
@@ -32,7 +35,7 @@ export function vesselFigure(ranked: Ranked, trials: readonly Trial[]): NamedFig
     injections: trials.flatMap((t) => t.injections.map((i) => i.at)),
     probes: trials.flatMap((t) => t.readings.map((r) => r.at)),
     notes,
-    accents: traitsOf(plant, fit).places,
+    accents: new Set(traitsOf(plant, fit).map((t) => t.place)),
   });
   return {
     name: "vessel",

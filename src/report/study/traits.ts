@@ -1,92 +1,102 @@
 import type { Plant } from "../../compile/plant.js";
 import type { Fit } from "../../fit/result.js";
-import type { Value } from "../../model/value.js";
+import type { Compartment, Feed } from "../../model/network.js";
 import { dimensions } from "../../units/dimension.js";
 import { parseUnit } from "../../units/parse.js";
 import { one, type Unit } from "../../units/unit.js";
 import { estimateLine } from "../digits.js";
 import { estimate } from "./estimate.js";
+import { intervalOf } from "./interval-of.js";
 
-/** What a fitted network says of its vessel, in words: each line one trait, the gravest first. */
-export interface Traits {
-  readonly lines: readonly string[];
-  readonly bypass: boolean;
-  readonly dead: boolean;
-  /** Names and streams (`feed>product`) that carry the traits, for the drawing. */
-  readonly places: ReadonlySet<string>;
+/** Something that a fitted network says is wrong with its vessel. */
+export interface Trait {
+  readonly is: "bypass" | "dead" | "quiet" | "recycle";
+  readonly line: string;
+  /** The body or stream (`feed>product`) that carries it. */
+  readonly place: string;
 }
+
+/** What can look like a trait without being one, and the check that tells (job of a tracer test, common practice). */
+export const secondLook: Readonly<Record<Trait["is"], { readonly couldBe: string; readonly next: string }>> = {
+  bypass: {
+    couldBe: "poor mixing where the tracer went in, a clock that is off, a dose heavier than the liquid",
+    next: "repeat with a diluted dose; sample the outlet at a second depth",
+  },
+  quiet: {
+    couldBe: "a drifting baseline, tracer held back by walls or solids, tracer that comes round again",
+    next: "a second tracer, a blank upstream throughout, a probe inside the zone",
+  },
+  dead: {
+    couldBe: "a volume or flow that is off, or a zone renewed so slowly that the test ended before its tail",
+    next: "check volume and flow meter; test longer",
+  },
+  recycle: {
+    couldBe: "tracer that returns through the plant, or repeated dosing",
+    next: "measure the inlet too",
+  },
+};
 
 /** Shares smaller than this are not worth a line. */
 const worthSaying = 0.002;
 
-/** Bypasses, dead water, quiet corners and recycles of a fitted plant, with intervals where one parameter stands for them. */
-export function traitsOf(plant: Plant, fit: Fit): Traits {
-  const lines: string[] = [];
-  const places = new Set<string>();
+/** Bypasses, dead water, quiet zones and recycles of a fitted plant, with intervals where the fit gives them. */
+export function traitsOf(plant: Plant, fit: Fit): Trait[] {
+  const recycles = plant.streams.filter((s) => s.role === "recycle");
   const feed = plant.feeds.reduce((sum, f) => sum + f.flow, 0);
-  const percent = unitOf("%");
-  const volume = plant.network.units.unitFor(dimensions.volume);
+  return [
+    ...plant.network.feeds.flatMap((f) => bypasses(f, plant, fit)),
+    ...plant.network.compartments.flatMap((c) => stillWater(c, plant, fit)),
+    ...recycles.map(
+      (s): Trait => ({
+        is: "recycle",
+        place: `${s.from}>${s.to}`,
+        line: `${percentOf(s.flow / feed)} of the feed flow runs back from '${s.from}' to '${s.to}'`,
+      }),
+    ),
+  ];
+}
+
+function bypasses(f: Feed, plant: Plant, fit: Fit): Trait[] {
   const outlets = new Set(plant.outlets.map((o) => o.name));
-  let bypass = false;
-  let dead = false;
-  for (const f of plant.network.feeds) {
-    const own = plant.feeds.find((p) => p.name === f.name)?.flow ?? feed;
-    for (const s of plant.streams.filter((x) => x.from === f.name && outlets.has(x.to))) {
-      const split = f.streams.find((x) => x.to === s.to)?.split;
-      const share = s.flow / own;
-      if (share < worthSaying) continue;
-      bypass = true;
-      places.add(`${s.from}>${s.to}`);
-      const known = split && "value" in split && split.is === "share" ? intervalOf(split.value, fit) : undefined;
-      lines.push(`${estimateLine(estimate(share, known, percent))} of '${f.name}' slips past the vessel to '${s.to}'`);
-    }
-  }
-  for (const c of plant.network.compartments) {
-    const held = c.values.volume?.of(plant.env) ?? 0;
-    const share = held / plant.volume.total;
-    const known = c.values.volume && intervalOf(c.values.volume, fit);
-    const size = () => `${estimateLine(estimate(held, known, volume))}, ${percentOf(share)} of the volume,`;
-    const exchange = plant.streams.filter((s) => s.role === "exchange" && (s.from === c.name || s.to === c.name));
-    const passed = plant.streams.some((s) => s.role !== "exchange" && (s.from === c.name || s.to === c.name));
-    if (!c.kind.flows && share >= worthSaying) {
-      dead = true;
-      places.add(c.name);
-      lines.push(`${size()} is never reached by the flow ('${c.name}')`);
-    } else if (!passed && exchange.length > 0 && share >= worthSaying) {
-      places.add(c.name);
-      const flow = exchange.reduce((sum, s) => sum + s.flow, 0);
-      const unit = plant.network.units.unitFor(dimensions.flow);
-      const time = estimateLine(estimate(held / flow, undefined, plant.network.units.time));
-      const flowKnown = exchangeInterval(plant, c.name, fit);
-      lines.push(
-        `${size()} is a quiet zone ('${c.name}') renewed by only ${estimateLine(estimate(flow, flowKnown, unit))}: its liquid changes once in ${time}`,
-      );
-    }
-  }
-  for (const s of plant.streams.filter((x) => x.role === "recycle")) {
-    places.add(`${s.from}>${s.to}`);
-    lines.push(`${percentOf(s.flow / feed)} of the feed flow runs back from '${s.from}' to '${s.to}'`);
-  }
-  return { lines, bypass, dead, places };
+  const own = plant.feeds.find((p) => p.name === f.name)?.flow ?? 0;
+  return plant.streams.flatMap((s): Trait[] => {
+    const share = s.flow / own;
+    if (s.from !== f.name || !outlets.has(s.to) || !(share >= worthSaying)) return [];
+    const split = f.streams.find((x) => x.to === s.to)?.split;
+    const known = split?.is === "share" ? intervalOf(split.value, plant, fit) : undefined;
+    const amount = estimateLine(estimate(share, known, percent));
+    const place = `${s.from}>${s.to}`;
+    return [{ is: "bypass", place, line: `${amount} of '${f.name}' slips past the vessel to '${s.to}'` }];
+  });
 }
 
-function exchangeInterval(plant: Plant, name: string, fit: Fit): readonly [number, number] | undefined {
-  const all = plant.network.compartments.flatMap((c) =>
-    c.exchanges.filter((e) => c.name === name || e.partner === name).map((e) => e.flow),
+/** Water that the flow never reaches, or only by exchange. */
+function stillWater(c: Compartment, plant: Plant, fit: Fit): Trait[] {
+  const held = c.values.volume?.of(plant.env) ?? 0;
+  const share = held / plant.volume.total;
+  if (!(share >= worthSaying)) return [];
+  const { units } = plant.network;
+  const known = c.values.volume && intervalOf(c.values.volume, plant, fit);
+  const size = `${estimateLine(estimate(held, known, units.unitFor(dimensions.volume)))}, ${percentOf(share)} of the volume,`;
+  if (!c.kind.flows) {
+    return [{ is: "dead", place: c.name, line: `${size} is never reached by the flow ('${c.name}')` }];
+  }
+  const touching = plant.streams.filter((s) => s.from === c.name || s.to === c.name);
+  if (touching.length === 0 || touching.some((s) => s.role !== "exchange")) return [];
+  const flow = touching.reduce((sum, s) => sum + s.flow, 0);
+  const flows = plant.network.compartments.flatMap((b) =>
+    b.exchanges.filter((e) => b.name === c.name || e.partner === c.name).map((e) => e.flow),
   );
-  return all.length === 1 ? intervalOf(all[0], fit) : undefined;
-}
-
-/** The interval of a value that is one fitted parameter and nothing else. */
-function intervalOf(value: Value, fit: Fit): readonly [number, number] | undefined {
-  const { expression } = value;
-  if (expression.type !== "name") return undefined;
-  return fit.parameters.find((p) => p.name === expression.name)?.interval95;
+  const renewed = flows.length === 1 ? intervalOf(flows[0], plant, fit) : undefined;
+  const by = estimateLine(estimate(flow, renewed, units.unitFor(dimensions.flow)));
+  const time = estimateLine(estimate(held / flow, undefined, units.time));
+  const line = `${size} is a quiet zone ('${c.name}') renewed by only ${by}: its liquid changes once in ${time}`;
+  return [{ is: "quiet", place: c.name, line }];
 }
 
 const percentOf = (share: number): string => `${(100 * share).toPrecision(2).replace(/\.0$/, "")} %`;
 
-function unitOf(name: string): Unit {
-  const unit = parseUnit(name);
+const percent = ((): Unit => {
+  const unit = parseUnit("%");
   return "factor" in unit ? unit : one;
-}
+})();
