@@ -5,6 +5,7 @@ import { Part, type Plant } from "./plant.js";
 
 /** What this version cannot work out over time or react: every body that only its transfer function describes. */
 export function uncarried(plant: Plant): Problem[] {
+  if (!plant.columns.part.includes(Part.Block)) return [];
   return plant.nodes.flatMap(({ part, block, name }) => {
     if (part !== Part.Block || !block) return [];
     const { at } = plant.network.compartments.find((body) => body.name === name) ?? plant.network;

@@ -4,9 +4,10 @@ import type { Problem } from "../problems/problem.js";
 import { collector } from "../problems/report.js";
 import { formatQuantity } from "../units/format.js";
 import { evaluateNames } from "./evaluate.js";
-import { balanceFlows, type FlowPlan, type Flows, flowPlan, type Say } from "./flows.js";
+import { balanceFlows, type FlowPlan, type Flows, flowPlan } from "./flows.js";
 import type { Plant, PlantStream, Settings } from "./plant.js";
 import { valuesInRange, volumesOf } from "./ranges.js";
+import type { Say } from "./say.js";
 import { spellOut } from "./spell.js";
 
 /**

@@ -4,7 +4,9 @@ import { type Adjacency, adjacency, stronglyConnected } from "../numerics/graph.
 import { factor, solve } from "../numerics/lu.js";
 import type { Report } from "../problems/report.js";
 import type { Span } from "../text/source.js";
-import { type Dimension, dimensions } from "../units/dimension.js";
+import { dimensions } from "../units/dimension.js";
+import type { Say } from "./say.js";
+import type { SolvedStream } from "./solved-stream.js";
 import { zoneFlows } from "./zone-flows.js";
 
 /** Solved steady flows, m3/s. */
@@ -15,13 +17,6 @@ export interface Flows {
   readonly streams: readonly SolvedStream[];
   /** Zoned bodies with their flows scaled to what enters, by compartment. */
   readonly zoned: ReadonlyMap<number, () => ZoneTable>;
-}
-
-export interface SolvedStream {
-  readonly from: number;
-  readonly to: number;
-  readonly flow: number;
-  readonly stream: Stream;
 }
 
 /** What of the flows does not depend on values: found once where a network is balanced many times. */
@@ -99,9 +94,6 @@ export function balanceFlows(
   const zoned = zoneFlows(network, streams, report, say);
   return zoned && { through, streams, zoned };
 }
-
-/** A value as the file would write it, for messages. */
-export type Say = (si: number, dimension: Dimension) => string;
 
 interface Place {
   readonly name: string;

@@ -5,7 +5,7 @@ import type { KeyShape, Shape } from "../schema/shape.js";
 import { dimensions, isRatio } from "../units/dimension.js";
 import { formatNumber } from "../units/format.js";
 import { kindValues } from "./evaluate.js";
-import type { Say } from "./flows.js";
+import type { Say } from "./say.js";
 
 /** Liquid held by every compartment, m3, in file order; none below zero. */
 export function volumesOf(network: Network, env: Float64Array, report: Report, say: Say): Float64Array {

@@ -3,7 +3,8 @@ import type { Network } from "../model/network.js";
 import { reconcileFlows } from "../numerics/reconcile.js";
 import type { Report } from "../problems/report.js";
 import { dimensions } from "../units/dimension.js";
-import type { Say, SolvedStream } from "./flows.js";
+import type { Say } from "./say.js";
+import type { SolvedStream } from "./solved-stream.js";
 
 /** Relative; closer than this, streams and table agree but for rounding. */
 const rounding = 1e-14;

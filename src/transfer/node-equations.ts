@@ -25,13 +25,12 @@ export class NodeEquations {
   private readonly work: { re: Float64Array; im: Float64Array };
 
   constructor(private readonly plant: Plant) {
-    const { nodes, from, to, flow } = plant;
-    const n = nodes.length;
+    const { columns, from, to, flow } = plant;
+    const { size: n, inflow } = columns;
     this.gainRe = new Float64Array(n);
     this.gainIm = new Float64Array(n);
     this.work = { re: new Float64Array(n), im: new Float64Array(n) };
     this.into = adjacency(n, to);
-    const inflow = Float64Array.from(nodes, (node) => node.inflow);
     this.weight = flow.map((q, k) => (inflow[to[k]] > 0 ? q / inflow[to[k]] : 0));
     this.groupOf = new Int32Array(n);
     plant.groups.forEach((group, g) => {
