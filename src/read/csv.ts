@@ -1,6 +1,7 @@
 import { CsvError, parse } from "csv-parse/sync";
 import type { Report } from "../problems/report.js";
 import type { Source, Span } from "../text/source.js";
+import { isText } from "./is-text.js";
 
 /** How a CSV file is written, where a document says so; what it leaves open is found out from the file. */
 export interface CsvOptions {
@@ -31,7 +32,7 @@ export function readCsv(source: Source, options: CsvOptions, report: Report): Cs
     report("csv-empty", all, { file: source.path });
     return undefined;
   }
-  if (source.text.startsWith("PK\u0003\u0004") || source.text.includes("\0")) {
+  if (!isText(source.text)) {
     report("csv-not-text", all, { file: source.path });
     return undefined;
   }

@@ -25,7 +25,7 @@ export interface DataRows {
  * Finds the header, the columns asked for and the first row of data. Without a declared header line it is the first row
  * that holds every header asked for; with positions alone, the first row if it holds neither time nor number. A row of
  * units under the header is passed over, and compared with the declared ones.
- * @returns undefined where a column is not there; reported
+ * @returns undefined where a column is not there, or a row does not fit the headers; reported
  */
 export function dataRows(
   table: CsvTable,
@@ -45,7 +45,48 @@ export function dataRows(
     if (header >= 0)
       compareUnit(name, table.rows[header].cells[columns[i]] ?? "", units ? under.cells[columns[i]] : "", report);
   }
-  return { columns, rows: table.rows.slice(first) };
+  const rows = table.rows.slice(first);
+  const headers = table.rows[Math.max(0, header)].cells.length;
+  return reportWidths(table, rows, headers, columns, asked, report) ? undefined : { columns, rows };
+}
+
+/**
+ * Rows that were cut into more cells than there are headers (a decimal comma beside commas), or that end before a column
+ * asked for, would be read as something else in silence. Empty cells beyond the last header do no harm.
+ * @returns whether there is one; reported
+ */
+function reportWidths(
+  table: CsvTable,
+  rows: readonly CsvRow[],
+  headers: number,
+  columns: readonly number[],
+  asked: readonly ColumnName[],
+  report: Report,
+): boolean {
+  let long: Wrong | undefined;
+  let short: Wrong | undefined;
+  const need = Math.max(...columns);
+  for (const row of rows) {
+    const { length } = row.cells;
+    if (length > headers) {
+      const extra = row.cells.findIndex((cell, i) => i >= headers && cell !== "");
+      if (extra >= 0) long = countWrong(long, row, extra);
+    } else if (length <= need && row.cells.some((cell) => cell !== "")) {
+      short = countWrong(short, row, length - 1);
+    }
+  }
+  if (long) {
+    const { row, others } = long;
+    const data = { row: row.line, cells: row.cells.length, headers, separator: table.separator, others };
+    report("row-long", wrongAt(table, long), data);
+  }
+  if (short) {
+    const { row, others } = short;
+    const cut = columns.findIndex((c) => c >= row.cells.length);
+    const data = { row: row.line, cells: row.cells.length, column: String(asked[cut].column), others };
+    report("row-short", wrongAt(table, short), data);
+  }
+  return long !== undefined || short !== undefined;
 }
 
 /** Index of the header row, -1 where there is none. */

@@ -3,6 +3,7 @@ import type { Report } from "../problems/report.js";
 import type { Source } from "../text/source.js";
 import { reportGlued } from "./colons.js";
 import { deepest, growTree } from "./grow.js";
+import { isText } from "./is-text.js";
 import { reportSyntax } from "./syntax.js";
 import { mendTraps } from "./traps.js";
 import type { MapNode } from "./tree.js";
@@ -18,6 +19,10 @@ export function readYaml(source: Source, report: Report): MapNode | undefined {
   const start = { source, from: 0, to: 0 };
   if (source.text.length > largest) {
     report("file-too-large", start, { megabytes: Math.ceil(source.text.length / megabyte) });
+    return undefined;
+  }
+  if (!isText(source.text)) {
+    report("not-text", { source: { ...source, text: "" }, from: 0, to: 0 }, { file: source.path });
     return undefined;
   }
   const document = parse(source);

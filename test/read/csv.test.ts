@@ -65,6 +65,25 @@ describe("a table as plants write it", () => {
     expect(value).toEqual(plain.value);
   });
 
+  test("cells that do not fit the headers are told, with the row, and never read as others", () => {
+    const decimalCommas = read("t,c\n0,5,1,2\n1,5,0,9\n2,5,0,4\n");
+    expect(decimalCommas.codes).toEqual(["row-long"]);
+    expect(decimalCommas.got).toBeUndefined();
+    expect(decimalCommas.problems[0].message).toBe(
+      "row 2 has 4 cells, more than the 2 columns of the table (and 2 more rows)",
+    );
+    expect(decimalCommas.problems[0].fix).toContain('{decimal: comma, separator: ";"}');
+    // A whole number among decimals: only some rows are long.
+    expect(read("t,c\n0,0\n1,1,5\n2,2\n").problems[0].message).toContain("row 3 has 3 cells");
+    expect(read("t,c\n0,0\n1,1.5\n2\n3,1\n").problems[0].message).toBe(
+      "row 4 ends after 1 cell: column 'c' is cut off",
+    );
+    expect(read("c,t,tag\n0,0\n1.5,1\n2,2,b\n").codes).toEqual([]);
+    expect(read("t,c\n0,0,\n1,1.5,,\n2,2\n\n,,,\n").codes).toEqual([]);
+    const quoted = read('t,c\n"0,5","1,2"\n"1,5","0,9"\n2,"0,4"\n', { csv: { decimal: "comma" } });
+    expect(quoted.value).toEqual([1.2, 0.9, 0.4]);
+  });
+
   test("columns by position, with and without a header", () => {
     const byPosition: Partial<SeriesSpec> = {
       time: { column: 2, at, unit: unit("min") },

@@ -1,6 +1,8 @@
 import fc from "fast-check";
 import { describe, expect, test } from "vitest";
+import { collector } from "../../src/problems/report.js";
 import { child, type Tree } from "../../src/read/tree.js";
+import { readYaml } from "../../src/read/yaml.js";
 import { plain, read } from "./read.js";
 
 describe("values keep the text that was typed", () => {
@@ -195,4 +197,16 @@ describe("whatever is typed", () => {
     if (tree.type === "list") for (const item of tree.items) expectInside(item, t);
     if (tree.type === "map") for (const { value } of tree.entries) expectInside(value, t);
   }
+});
+
+test("what is no text is told once", () => {
+  const codes = (text: string) => {
+    const { report, problems } = collector();
+    readYaml({ path: "a.yaml", text }, report);
+    return problems.map((p) => p.code);
+  };
+  const bytes = (n: number) => String.fromCharCode(...Array.from({ length: n }, (_, i) => 1 + ((i * 97 + 13) % 255)));
+  for (const text of ["PK\u0003\u0004 a workbook", "network: A\0", bytes(900)])
+    expect(codes(text)).toEqual(["not-text"]);
+  expect(codes("network: A\u0007\nformat: 1\n")).not.toContain("not-text");
 });

@@ -5,6 +5,11 @@ const meant = (nearest: string | undefined, otherwise: string): string =>
 
 const more = (others: number): string => (others === 0 ? "" : ` (and ${others} more ${others === 1 ? "row" : "rows"})`);
 
+const cellFix = (separator: string): string =>
+  separator === ","
+    ? 'if commas stand before decimals, save the table with semicolons and write `csv: {decimal: comma, separator: ";"}`, or put those numbers in quotation marks'
+    : "name the true `separator` in `csv:`, or put cells that hold one in quotation marks";
+
 /** Trials and the tables that they name. Places in a table are lines of the file, as an editor counts them. */
 export const dataEntries = {
   "file-missing": entry<{ file: string }>({
@@ -68,6 +73,18 @@ export const dataEntries = {
     severity: "error",
     says: ({ text }) => `day and month of '${text}' could be confused`,
     fix: 'say which is which: `format: "d/M/y h:m"` or `format: "M/d/y h:m"`',
+  }),
+  "row-long": entry<{ row: number; cells: number; headers: number; separator: string; others: number }>({
+    severity: "error",
+    says: ({ row, cells, headers, others }) =>
+      `row ${row} has ${cells} cells, more than the ${headers} ${headers === 1 ? "column" : "columns"} of the table${more(others)}`,
+    fix: ({ separator }) => cellFix(separator),
+  }),
+  "row-short": entry<{ row: number; cells: number; column: string; others: number }>({
+    severity: "error",
+    says: ({ row, cells, column, others }) =>
+      `row ${row} ends after ${cells} ${cells === 1 ? "cell" : "cells"}: column '${column}' is cut off${more(others)}`,
+    fix: "complete the row, or take it out; a missing value keeps its separator, with nothing after it",
   }),
   "cell-not-time": entry<{ text: string; format: string; row: number; others: number }>({
     severity: "error",

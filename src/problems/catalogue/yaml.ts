@@ -7,6 +7,11 @@ export const yamlEntries = {
     says: () => "the file is empty",
     fix: "begin with what it is: `network: TITLE`, then `format: 1`",
   }),
+  "not-text": entry<{ file: string }>({
+    severity: "error",
+    says: ({ file }) => `'${file}' is not a text file`,
+    fix: "name the document itself; a text editor saves it as plain text (UTF-8)",
+  }),
   "not-a-map": entry<{ found: string }>({
     severity: "error",
     says: (d) => `the file holds ${d.found}, not keys with values`,
