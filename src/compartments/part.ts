@@ -10,12 +10,12 @@ export const part: CompartmentKind = {
       shape: { is: "text" },
       required: true,
       says: "The network file, relative to this file. It is a network that stands alone, or a variant of one.",
-      example: "shared/parts/stirred-tank.yaml",
+      example: "../shared/parts/quiet-corner.yaml",
     },
     with: {
       shape: { is: "named", each: { is: "quantity", dimension: "any" }, keys: "dotted" },
       says: "Values for constants and parameters of the part: numbers, or expressions over names of this file. What is not named stays open, as `name.tanks`: free to be fitted or set, and the same in all repeats.",
-      example: "{tanks: 3, dead: 0.1 * total}",
+      example: "{total: 2.4 m3, renewal: 4 L/min / reactor.feed.flow}",
     },
     repeat: {
       shape: { is: "whole", atLeast: 1, atMost: 10_000 },

@@ -2,6 +2,7 @@ import { kindValues } from "../compile/evaluate.js";
 import type { Plant, PlantStream } from "../compile/plant.js";
 import type { Compartment } from "../model/network.js";
 import { dimensions } from "../units/dimension.js";
+import { pastPorts } from "./part-ports.js";
 import { skipsBodies } from "./routes.js";
 import { amount, typeset } from "./scale.js";
 import type { BodyRole, FlowSheet, SheetBody, SheetStream, SheetUnit } from "./sheet.js";
@@ -20,18 +21,20 @@ export interface SheetOptions {
 export function flowSheet(plant: Plant, wanted: SheetOptions = {}): FlowSheet {
   const { network } = plant;
   const options = atPorts(plant, wanted);
+  const marked = new Set([...(options.injections ?? []), ...(options.probes ?? []), ...(options.notes?.keys() ?? [])]);
+  const { streams, passed } = pastPorts(plant, marked);
   const units = { volume: network.units.unitFor(dimensions.volume), flow: network.units.unitFor(dimensions.flow) };
   const named = (name: string, role: BodyRole): SheetBody => withOptions({ name, volume: 0, role }, options);
   const bodies = [
     ...plant.feeds.map((f) => named(f.name, "feed")),
-    ...network.compartments.map((c) => withOptions(bodyOf(c, plant), options)),
+    ...network.compartments.filter((c) => !passed.has(c.name)).map((c) => withOptions(bodyOf(c, plant), options)),
     ...plant.outlets.map((o) => named(o.name, "outlet")),
   ];
   return {
     title: network.title,
     says: vesselLine(plant, units),
     bodies,
-    streams: streamsOf(plant, bodies, units.flow, options),
+    streams: streamsOf(streams, bodies, units.flow, options),
     units,
   };
 }
@@ -68,7 +71,7 @@ function withOptions(body: SheetBody, { injections, probes, notes, accents }: Sh
 }
 
 function streamsOf(
-  { streams }: Plant,
+  streams: readonly PlantStream[],
   bodies: readonly SheetBody[],
   unit: SheetUnit,
   { accents }: SheetOptions,

@@ -10,10 +10,6 @@ export interface KindKeys {
   readonly exchanges: boolean;
 }
 
-/** Kinds of the language that this version refuses, unless the kinds table has them. */
-const laterKinds: Record<string, string> = {
-};
-
 /** Keys of the language that belong to some kind and that this version refuses there. */
 const laterKeys: Record<string, string> = {
   sends: "One species that divides otherwise than the liquid.",
@@ -60,7 +56,6 @@ function kindRecord(name: string, kind: KindKeys): VariantShape {
 export function compartmentShape(kinds: Readonly<Record<string, KindKeys>>): Shape {
   const of: Record<string, VariantShape> = {};
   for (const kind in kinds) of[kind] = kindRecord(kind, kinds[kind]);
-  for (const kind in laterKinds) of[kind] ??= { says: laterKinds[kind], keys: {}, later: true };
   return { is: "variant", by: "kind", of };
 }
 
@@ -187,7 +182,7 @@ function wholeNetwork(kinds: Readonly<Record<string, KindKeys>>): RecordShape {
 
 /**
  * A network, a variant of one, or a change alone (`change:` and no base), which a study applies to each rival.
- * @param kinds the table of compartment kinds; kinds of the language that it lacks are refused as not in this version
+ * @param kinds the table of compartment kinds
  */
 export const networkShape = (kinds: Readonly<Record<string, KindKeys>>): Shape =>
   orVariant("network", wholeNetwork(kinds), true);
