@@ -3,9 +3,26 @@ import { RefusedError } from "../problems/refused.js";
 import { problem } from "../problems/report.js";
 import { Part, type Plant } from "./plant.js";
 
-/** What this version cannot work out over time or react: every body that only its transfer function describes. */
-export function uncarried(plant: Plant): Problem[] {
-  if (!plant.columns.part.includes(Part.Block)) return [];
+/** What is to be done with a plant: followed in time (and fitted), or its steady state with reaction. */
+export type Work = "tracer" | "reaction";
+
+/** What this version does in about half a minute: nodes in all, and nodes that feed one another. */
+const limits: Readonly<Record<Work, { says: string; nodes: number; circle: number }>> = {
+  tracer: { says: "compute tracer curves of", nodes: 20_000, circle: 20_000 },
+  reaction: { says: "solve reaction in", nodes: 100_000, circle: 1_000 },
+};
+
+/** Why this version cannot do a work: bodies that only their transfer function describes, too many nodes. */
+export function uncarried(plant: Plant, work: Work = "tracer"): Problem[] {
+  const { size, part } = plant.columns;
+  const { says, nodes, circle } = limits[work];
+  const largest = plant.groups.reduce((most, group) => Math.max(most, group.length), 0);
+  const tooMany = (found: number, most: number, circle: boolean): Problem[] => [
+    problem("too-many-cells", plant.network.at, { what: says, nodes: found, most, circle }),
+  ];
+  if (size > nodes) return tooMany(size, nodes, false);
+  if (largest > circle) return tooMany(largest, circle, true);
+  if (!part.includes(Part.Block)) return [];
   return plant.nodes.flatMap(({ part, block, name }) => {
     if (part !== Part.Block || !block) return [];
     const { at } = plant.network.compartments.find((body) => body.name === name) ?? plant.network;
@@ -13,8 +30,8 @@ export function uncarried(plant: Plant): Problem[] {
   });
 }
 
-/** @throws RefusedError where a body of the plant is beyond the time-domain engines and the reaction of this version */
-export function requireCarried(plant: Plant): void {
-  const problems = uncarried(plant);
+/** @throws RefusedError where a plant is beyond the time-domain engines, or the reaction, of this version */
+export function requireCarried(plant: Plant, work: Work = "tracer"): void {
+  const problems = uncarried(plant, work);
   if (problems.length > 0) throw new RefusedError(problems);
 }

@@ -51,7 +51,7 @@ export function steadyState(
   duty: Duty,
   settings: DutySettings = {},
 ): SteadyState {
-  requireCarried(plant);
+  requireCarried(plant, "reaction");
   const conditions = conditionsOf(plant, chemistry, duty, settings);
   const walk = new Walk(plant, conditions);
   for (const group of plant.groups) walk.pass(group);

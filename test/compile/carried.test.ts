@@ -40,3 +40,16 @@ test("what cells, tubes and joints can spell is carried, pockets without volume 
   expect(plant.volume.total).toBeCloseTo(0.016, 15);
   expect(plant.volume.dead).toBeCloseTo(0.002, 15);
 });
+
+test("more cells than an engine does in reasonable time are refused with their number, not tried", () => {
+  const row = (n: number) => `  a: {kind: stirred, repeat: ${n}, backflow: 1 L/min, volume: 3 L, to: out}`;
+  const circle = plantOf(vessel(row(1001)));
+  expect(uncarried(circle)).toEqual([]);
+  const [problem] = uncarried(circle, "reaction");
+  expect(problem).toMatchObject({ code: "too-many-cells", severity: "error" });
+  expect(problem.message).toBe(
+    "1001 nodes of the network feed one another; this version can solve reaction in up to 1000",
+  );
+  const large = { ...circle, columns: { ...circle.columns, size: 20_001 } };
+  expect(() => tracerResponse(large, { at: "in", form: "pulse" }, [0, 60])).toThrow(RefusedError);
+});

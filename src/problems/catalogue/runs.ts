@@ -118,6 +118,13 @@ export const runEntries = {
     fix: "check times, injection and place of the reading; `scale: known` if the amount is trusted",
     example: { key: "Salt pulse/product" },
   }),
+  "too-many-cells": entry({
+    severity: "error",
+    says: ({ what, nodes, most, circle }: { what: string; nodes: number; most: number; circle: boolean }) =>
+      `${circle ? `${nodes} nodes of the network feed one another` : `the network has ${nodes} nodes`}; this version can ${what} up to ${most}`,
+    fix: "flows, volumes and mean times are there at any size (`check`, `verify`); else join cells into fewer",
+    example: { what: "compute tracer curves of", nodes: 64_004, most: 20_000, circle: false },
+  }),
 };
 
 function joined(names: readonly string[]): string {
