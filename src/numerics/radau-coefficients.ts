@@ -21,6 +21,12 @@ export interface RadauCoefficients {
   readonly tInverse: Float64Array;
   /** Weights of z_j / h beside f(start) in the embedded error estimate of order s. */
   readonly error: Float64Array;
+  /** Weights of z_j in what the polynomial through the stages alone misses the start by. */
+  readonly miss: Float64Array;
+  /** Largest error of that polynomial between first and last stage, relative to what it misses the start by. */
+  readonly missWithin: number;
+  /** Largest |u (u - c_1) ... (u - c_s)| in the step: with y^(s+1) h^(s+1) / (s+1)!, the error of interpolation. */
+  readonly nodal: number;
 }
 
 /**
@@ -33,10 +39,12 @@ export function radauCoefficients(stages: 1 | 3 | 5 | 7): RadauCoefficients {
   const c = radauNodes(s);
   const inverse = new Float64Array(s * s);
   const error = new Float64Array(s);
+  const miss = new Float64Array(s);
   const nodes = [0, ...c];
   for (let j = 0; j < s; j++) {
     for (let i = 0; i < s; i++) inverse[i * s + j] = lagrangeSlope(nodes, j + 1, i + 1);
     error[j] = -lagrangeSlope(nodes, j + 1, 0);
+    miss[j] = c.reduce((product, x, m) => (m === j ? product : (product * x) / (x - c[j])), 1);
   }
   const eigenvalues = eigenvaluesOfInverse(s);
   const t = new Float64Array(s * s);
@@ -61,7 +69,14 @@ export function radauCoefficients(stages: 1 | 3 | 5 | 7): RadauCoefficients {
     if (isReal) real = exactRe;
     else pairs.push({ re: exactRe, im: exactIm });
   }
-  return { stages: s, c, inverse, real, pairs, t, tInverse: inverted(t, s), error };
+  const product = (u: number): number => Math.abs(c.reduce((sofar, x) => sofar * (u - x), 1));
+  let [largest, nodal] = [0, 0];
+  for (let u = 0; u <= 1; u += 1 / 1024) {
+    if (u >= c[0]) largest = Math.max(largest, product(u));
+    nodal = Math.max(nodal, u * product(u));
+  }
+  const missWithin = largest / product(0);
+  return { stages: s, c, inverse, real, pairs, t, tInverse: inverted(t, s), error, miss, missWithin, nodal };
 }
 
 /** Zeros of P_s - P_(s-1) on [0, 1] (Legendre), the last at 1. */

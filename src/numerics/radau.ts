@@ -29,6 +29,8 @@ export interface RadauStep {
   /**
    * Size of the local error in units of the scale, root mean square; Infinity where it is not finite.
    * @param f rhs at (t, y)
+   * Never less than the error of interpolation, as far as that can be told: for very stiff parts of the state the embedded
+   * estimate is next to zero however long the step.
    * @param again filters a second time, with one more evaluation: for the first step or after a rejection
    */
   error(t: number, h: number, y: Float64Array, f: Float64Array, scale: Float64Array, again: boolean): number;
@@ -50,6 +52,8 @@ export function radauStep({ size: n, rhs }: StiffProblem, k: RadauCoefficients, 
   const part = new Float64Array(n);
   const local = new Float64Array(n);
   const slope = new Float64Array(n);
+  const predicted = new Float64Array(n); // what the guess made of the last stage
+  let predictedFrom = 0; // length of the step that it came from
   let confidence = 1; // theta / (1 - theta) of the step before
 
   const step: RadauStep = {
@@ -75,7 +79,9 @@ export function radauStep({ size: n, rhs }: StiffProblem, k: RadauCoefficients, 
           for (let m = 0; m < n; m++) z[i][m] -= y[m];
         }
         transform(k.tInverse, s, z, w);
+        predicted.set(z[s - 1]);
       }
+      predictedFrom = guess.h;
       confidence = Math.max(confidence, Number.EPSILON) ** 0.8;
       step.contraction = 0;
       let before = 0;
@@ -126,6 +132,7 @@ export function radauStep({ size: n, rhs }: StiffProblem, k: RadauCoefficients, 
     },
 
     error(t, h, y, start, scale, again) {
+      const between = interpolationError(h, scale);
       part.fill(0);
       for (let j = 0; j < s; j++) {
         const weight = k.error[j] / h;
@@ -134,18 +141,39 @@ export function radauStep({ size: n, rhs }: StiffProblem, k: RadauCoefficients, 
       for (let m = 0; m < n; m++) local[m] = part[m] + start[m];
       systems.real.solve(local);
       const size = norm(local, scale);
-      if (size < 1 || !again || !(size < Number.POSITIVE_INFINITY))
-        return Number.isNaN(size) ? Number.POSITIVE_INFINITY : size;
+      if (!(size < Number.POSITIVE_INFINITY)) return Number.POSITIVE_INFINITY;
+      if (size < 1 || !again) return Math.max(size, between);
       for (let m = 0; m < n; m++) at[m] = y[m] + local[m];
       rhs(t, at, slope);
       step.evaluations++;
       for (let m = 0; m < n; m++) local[m] = part[m] + slope[m];
       systems.real.solve(local);
       const filtered = norm(local, scale);
-      return Number.isNaN(filtered) ? size : filtered;
+      return Math.max(Number.isNaN(filtered) ? size : filtered, between);
     },
   };
   return step;
+
+  /**
+   * The smaller of two upper estimates: what the polynomial through the stages alone misses the start by, of order s; and
+   * what the polynomial of the step before has missed this end by, scaled back into the step, of order s + 1 but easily
+   * upset by what went on before.
+   */
+  function interpolationError(h: number, scale: Float64Array): number {
+    local.fill(0);
+    for (let j = 0; j < s; j++) {
+      const weight = k.missWithin * k.miss[j];
+      for (let m = 0; m < n; m++) local[m] += weight * z[j][m];
+    }
+    const missed = norm(local, scale);
+    if (predictedFrom === 0 || missed < 1) return missed < 1 ? 0 : missed;
+    const end = 1 + h / predictedFrom;
+    let back = k.nodal / end;
+    for (let j = 0; j < s; j++) back *= h / predictedFrom / (end - k.c[j]);
+    back *= h / predictedFrom;
+    for (let m = 0; m < n; m++) local[m] = back * (z[s - 1][m] - predicted[m]);
+    return Math.min(missed, norm(local, scale));
+  }
 }
 
 /** to_i = sum over j of matrix[i, j] from_j. */

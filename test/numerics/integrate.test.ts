@@ -1,36 +1,6 @@
-import { readFileSync } from "node:fs";
 import { describe, expect, test } from "vitest";
-import { type IntegrateOptions, integrate } from "../../src/numerics/integrate.js";
-import { formula } from "./infix.js";
-
-/** Initial-value problems with published or multiply computed end values; sources inside the files. */
-interface Reference {
-  readonly equations: Readonly<Record<string, string>>;
-  readonly constants?: Readonly<Record<string, string>>;
-  readonly initial_values: readonly string[];
-  readonly t_start: number | string;
-  readonly t_end: number | string;
-  readonly reference_solution: readonly string[];
-}
-
-function reference(name: string): { problem: IntegrateOptions; solution: number[] } {
-  const path = new URL(`../../shared/reference/ode-problems/${name}.json`, import.meta.url);
-  const file = JSON.parse(readFileSync(path, "utf8")) as Reference;
-  const names: Record<string, number> = {};
-  for (const [key, value] of Object.entries(file.constants ?? {})) names[key] = Number(value);
-  const formulas = file.initial_values.map((_, i) => formula(file.equations[`dy${i + 1}/dt`]));
-  const rhs = (_t: number, y: Float64Array, dy: Float64Array): void => {
-    y.forEach((v, i) => {
-      names[`y${i + 1}`] = v;
-    });
-    formulas.forEach((f, i) => {
-      dy[i] = f(names);
-    });
-  };
-  const start = file.initial_values.map(Number);
-  const problem = { rhs, start, from: Number(file.t_start), to: Number(file.t_end) };
-  return { problem, solution: file.reference_solution.map(Number) };
-}
+import { integrate } from "../../src/numerics/integrate.js";
+import { reference } from "./ode-problems.js";
 
 const methods = ["nonstiff", "stiff", "auto"] as const;
 
