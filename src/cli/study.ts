@@ -1,3 +1,5 @@
+import { uncarried } from "../compile/carried.js";
+import { compile } from "../compile/compile.js";
 import { parseStudy } from "../parse/study.js";
 import { beside } from "../read/paths.js";
 import { writeSummary } from "../report/markdown.js";
@@ -20,6 +22,10 @@ export interface StudyOptions {
 /** `study FILE`: every rival fitted, every duty predicted, every change compared, one report. */
 export async function study(file: string, options: StudyOptions, { inputs, io }: Context): Promise<Outcome> {
   const document = inputs.document(file, parseStudy);
+  for (const { network } of document.rivals) {
+    const { plant } = compile(network);
+    if (plant) inputs.accept(uncarried(plant));
+  }
   const folder = options.output ?? (document.out === undefined ? undefined : beside(file, document.out));
   // Before the work: a folder that cannot be written is no surprise to keep for its end.
   if (folder !== undefined) io.makeFolder(beside(`${folder}/`, "figures"));

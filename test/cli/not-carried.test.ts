@@ -1,0 +1,37 @@
+import { expect, test } from "vitest";
+import { backmix, json } from "./fake.js";
+import { files as vessels } from "./vessels.js";
+
+const network = `network: Dispersed
+format: 1
+parameters: {size: {value: 100 L, between: [10 L, 1000 L]}}
+feeds: {feed: {flow: 10 L/min, to: bulk}}
+compartments:
+  bulk: {kind: dispersed, volume: size, peclet: 5, to: product}
+outlets: [product]
+`;
+const files = {
+  ...vessels,
+  "dispersed.yaml": network,
+  "duty.yaml": "duty: Normal\nformat: 1\nfeeds: {feed: {}}\n",
+  "study.yaml": "study: One\nformat: 1\nrivals: [tank.yaml, dispersed.yaml]\ntrials: [pulse.yaml]\nduties: []\n",
+};
+
+test.each([
+  [["simulate", "dispersed.yaml", "--pulse", "feed"]],
+  [["simulate", "dispersed.yaml", "--trial", "pulse.yaml"]],
+  [["simulate", "dispersed.yaml", "--duty", "duty.yaml"]],
+  [["fit", "dispersed.yaml", "--trial", "pulse.yaml"]],
+  [["study", "study.yaml"]],
+])("%j refuses a body that no engine carries, with its place", async (args) => {
+  const { status, err } = await backmix(args, { files });
+  expect(err).toContain("dispersed.yaml:6:3 not-carried: 'bulk' is axial dispersion");
+  expect(status).toBe(1);
+  const { document } = await json(args, { files });
+  expect(document).toMatchObject({ ok: false, problems: [{ code: "not-carried", line: 6, column: 3 }] });
+});
+
+test("check and draw take it", async () => {
+  expect((await backmix(["check", "dispersed.yaml"], { files })).status).toBe(0);
+  expect((await backmix(["draw", "dispersed.yaml", "-o", "a.svg"], { files })).status).toBe(0);
+});
