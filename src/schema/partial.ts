@@ -14,7 +14,13 @@ export function partial(shape: Shape): Shape {
       const keys: Record<string, KeyShape> = {};
       const kinds = Object.entries(shape.of).filter(([, v]) => !v.later);
       for (const [, variant] of kinds)
-        for (const key in variant.keys) if (!keys[key] || isRefused(keys[key])) keys[key] = variant.keys[key];
+        for (const key in variant.keys)
+          if (
+            !keys[key] ||
+            isRefused(keys[key]) ||
+            (!isRefused(variant.keys[key]) && takesMore(variant.keys[key], keys[key]))
+          )
+            keys[key] = variant.keys[key];
       keys[shape.by] = { ...keys[shape.by], shape: decidingShape(shape) };
       return { is: "record", keys: partialKeys(keys) };
     }
@@ -32,6 +38,15 @@ function partialKeys(keys: Readonly<Record<string, KeyShape>>): Record<string, K
     out[key] = isRefused(rest) ? rest : { ...rest, shape: orNothing(partial(rest.shape)) };
   }
   return out;
+}
+
+/** Where kinds have one key in several forms, the form that nests deeper takes the others, too (the `to` of a part). */
+const takesMore = (a: KeyShape, b: KeyShape): boolean => depth(a.shape) > depth(b.shape);
+
+function depth(shape: Shape): number {
+  if (shape.is === "either") return Math.max(...shape.of.map(depth));
+  if (shape.is === "named") return 1 + depth(shape.each);
+  return shape.is === "list" ? 1 + depth(shape.of) : 0;
 }
 
 const isRefused = (key: KeyShape): boolean => key.later === true || key.elsewhere !== undefined;

@@ -80,7 +80,6 @@ describe("one finding a place, at the place", () => {
 describe("what this version does not honour is refused", () => {
   test.each([
     ["basis: mass", ["not-yet basis"]],
-    ["compartments: {a: {kind: zones, volume: 1 L, volumes: 3}}", ["not-yet zones"]],
     ["compartments: {a: {kind: junction, to: b, sends: {x: {b: rest}}}}", ["not-yet sends"]],
     ["compartments: {a: {kind: stirred, volume: 1 L, to: b, sends: {held: 3 L}}}", ["not-yet sends"]],
     ["parameters: {a: {value: 1, per: trial}}", ["not-yet per"]],
@@ -122,7 +121,6 @@ describe("a change", () => {
     ["outlets: null, constants: {a: null}", []],
     ["parametrs: {}", ["unknown-key parametrs"]],
     ["compartments: {bulk: {volum: 3 L}}", ["unknown-key volum"]],
-    ["compartments: {bulk: {kind: zones}}", ["not-yet zones"]],
     ["parameters: {bypass: {value: [2]}}", ["wrong-shape [2]"]],
     ["basis: mass", ["not-yet basis"]],
     ["parameters: {bypass: }", ["empty-in-change bypass"]],
