@@ -70,7 +70,7 @@ export function keysSection(kind: DocumentKind, shape: Shape): string {
 
 function groupText(kind: DocumentKind, { path, says, keys, oneOf, sameAs }: Group): string {
   const heading = (of: Path): string => [kind, ...of].join(" › ");
-  const list = Object.entries(keys).map(([name, key]) => keyText(name, key));
+  const list = Object.entries(keys).flatMap(([name, key]) => (key.elsewhere ? [] : keyText(name, key)));
   return parts(
     path.length > 0 ? `#### ${heading(path)}` : "",
     says ?? "",
@@ -84,6 +84,7 @@ function keyText(name: string, key: KeyShape): string {
   if (key.later) return `- **${code(name)}** · *${notYet}*  \n  ${key.says}`;
   const facts = [takes(key.shape)];
   if (key.required) facts.push("**required**");
+  if (key.needs !== undefined) facts.push(`with ${code(key.needs)}`);
   if (key.default !== undefined) facts.push(`without it ${code(key.default)}`);
   const example = key.example === undefined ? "" : `  \n  ${code(`${name}: ${key.example}`)}`;
   return `- **${code(name)}** · ${facts.join(" · ")}  \n  ${key.says}${example}`;

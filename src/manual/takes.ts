@@ -9,7 +9,7 @@ export function takes(shape: Shape): string {
     case "text":
       return "text";
     case "quantity":
-      return quantity(shape.dimension);
+      return quantity(shape.dimension) + rangeOf(shape);
     case "whole":
       return `a whole number from ${shape.atLeast}${shape.atMost === undefined ? "" : ` to ${shape.atMost}`}`;
     case "choice":
@@ -34,6 +34,9 @@ export function takes(shape: Shape): string {
       return either(shape.of);
   }
 }
+
+const rangeOf = ({ atLeast, above }: { readonly atLeast?: number; readonly above?: number }): string =>
+  atLeast !== undefined ? `, at least ${atLeast}` : above !== undefined ? `, above ${above}` : "";
 
 export const notYet = "not in this version";
 
