@@ -1,4 +1,3 @@
-import { compile } from "../compile/compile.js";
 import type { Plant } from "../compile/plant.js";
 import { parseAny } from "../parse/any.js";
 import { githubAnnotations } from "../problems/formats/github.js";
@@ -32,23 +31,26 @@ export function check(files: readonly string[], { format }: CheckOptions, { inpu
     const text = inputs.text(file);
     if (typeof text !== "string") return { file, kind: undefined, problems: [text], plant: undefined };
     const { kind, network, problems } = parseAny(text, inputs.options(file));
-    return { file, kind, problems, plant: network && compile(network).plant };
+    return { file, kind, problems, plant: network?.start };
   });
   const problems = checked.flatMap((c) => c.problems);
   const ok = !hasErrors(problems);
   return {
     status: ok ? 0 : 1,
     text: textOf(checked, problems, format, io.colour.out),
-    json: {
-      ok,
-      files: checked.map((c) => ({
-        file: c.file,
-        ok: !hasErrors(c.problems),
-        kind: c.kind ?? null,
-        problems: c.problems.map(problemJson),
-        ...(c.plant ? { network: networkJson(c.plant) } : {}),
-      })),
-      problems: problems.map(problemJson),
+    // Made when asked for.
+    get json() {
+      return {
+        ok,
+        files: checked.map((c) => ({
+          file: c.file,
+          ok: !hasErrors(c.problems),
+          kind: c.kind ?? null,
+          problems: c.problems.map(problemJson),
+          ...(c.plant ? { network: networkJson(c.plant) } : {}),
+        })),
+        problems: problems.map(problemJson),
+      };
     },
   };
 }

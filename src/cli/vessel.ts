@@ -15,14 +15,17 @@ export interface Body {
 /** The bodies that have a volume, in file order. */
 export function bodiesOf(plant: Plant): Body[] {
   const { network, env, streams } = plant;
+  const through = new Map<string, number>();
+  const exchanged = new Map<string, number>();
+  const count = (sums: Map<string, number>, name: string, flow: number) => sums.set(name, (sums.get(name) ?? 0) + flow);
+  for (const { role, from, to, flow } of streams) {
+    if (role !== "exchange") count(through, to, flow);
+    else for (const end of [from, to]) count(exchanged, end, flow);
+  }
   return network.compartments.flatMap((c): Body[] => {
     if (c.values.volume === undefined && !c.zones) return [];
     const volume = c.kind.volume(kindValues(c, env));
-    const sum = (exchange: boolean): number =>
-      streams
-        .filter((s) => (s.role === "exchange") === exchange && (s.to === c.name || (exchange && s.from === c.name)))
-        .reduce((total, s) => total + s.flow, 0);
-    const flow = sum(false) || sum(true);
+    const flow = through.get(c.name) || (exchanged.get(c.name) ?? 0);
     return [{ name: c.name, kind: c.kind.name, volume, flow, spaceTime: volume === 0 ? 0 : volume / flow }];
   });
 }

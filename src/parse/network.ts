@@ -1,6 +1,7 @@
 import { checkNetwork } from "../check/check.js";
 import { compile } from "../compile/compile.js";
 import { evaluateNames } from "../compile/evaluate.js";
+import type { Plant } from "../compile/plant.js";
 import type { Network } from "../model/network.js";
 import type { Problem } from "../problems/problem.js";
 import { collector, hasErrors } from "../problems/report.js";
@@ -16,6 +17,8 @@ export interface NetworkDocument extends Network {
   readonly tree: MapNode;
   /** How it reached the files that it names. */
   readonly files: Files;
+  /** Balanced at the file's own values. */
+  readonly start: Plant;
 }
 
 /**
@@ -49,11 +52,11 @@ export function networkFromTree(
   const network = resolveNetwork(tree, path, report, files);
   if (hasErrors(problems)) return { network: undefined, problems };
   checkNetwork(network, evaluateNames(network), report);
-  if (!hasErrors(problems)) {
-    const compiled = compile(network);
-    problems.push(...compiled.problems);
-    if (compiled.plant) fastExchanges(compiled.plant, report);
-  }
-  if (!hasErrors(problems)) cornerWarnings(network, report);
-  return { network: hasErrors(problems) ? undefined : { ...network, tree, files }, problems };
+  if (hasErrors(problems)) return { network: undefined, problems };
+  const { plant, problems: impossible } = compile(network);
+  problems.push(...impossible);
+  if (!plant || hasErrors(problems)) return { network: undefined, problems };
+  fastExchanges(plant, report);
+  cornerWarnings(network, report);
+  return { network: { ...network, tree, files, start: plant }, problems };
 }

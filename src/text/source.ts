@@ -43,7 +43,14 @@ export function usesOf(source: Source): Use[] {
 
 /** The text of a 1-based line, without its line break. */
 export function lineText(source: Source, line: number): string {
-  return source.text.split(/\r\n|\n|\r/, line)[line - 1] ?? "";
+  const { text } = source;
+  const end = /\r\n|\n|\r/g;
+  let from = 0;
+  for (let n = 1; n < line; n++) {
+    if (end.exec(text) === null) return "";
+    from = end.lastIndex;
+  }
+  return text.slice(from, end.exec(text)?.index);
 }
 
 function lineAndColumn(text: string, offset: number): [number, number] {
