@@ -8,6 +8,7 @@ import { collector } from "../problems/report.js";
 import { child, type MapNode, type ScalarNode, type Tree } from "../read/tree.js";
 import { placeOf } from "../text/source.js";
 import { differenceInUnit, fromUnit, inUnit, type Unit } from "../units/unit.js";
+import { withValue } from "./insert.js";
 
 /** A value to put back, SI, and its standard error where there is one. */
 export interface NewValue {
@@ -35,20 +36,22 @@ export interface WrittenBack {
  * The text of a network with new values of parameters in the place of the old ones. Only the digits of each `value:` are
  * replaced, so that comments, order, quotes, units and a `±` beside the value stay; a rule is replaced by a number in the
  * unit that it had. As many digits as the standard error supports (to its second), more where the rounded number would
- * leave its bounds; six without one.
+ * leave its bounds; six without one. A value that other networks share, in the base of a variant or in a part, is left
+ * alone: the new one goes into the network's own `change:`, or into the `with:` of the part.
  */
 export function writeBack(network: Network & { readonly tree: MapNode }, values: readonly NewValue[]): WrittenBack {
   const { report, problems } = collector();
   const { source } = network.at;
   const spans = spansOf(network.tree);
   const edits: (Rewritten & { readonly from: number; readonly to: number })[] = [];
+  const additions: Addition[] = [];
   for (const given of values) {
     const named = network.names.find((n) => n.name === given.name && n.role === "parameter");
     const node = child(child(child(network.tree, "parameters"), given.name), "value");
     const refuse = (why: string): void => report("not-written-back", node?.at ?? network.at, { name: given.name, why });
-    if (!named || node?.type !== "scalar") refuse("it is no parameter with a `value:`");
-    else if (node.at.source.path !== source.path)
-      refuse(`it is written in '${node.at.source.path}', which others share`);
+    const path = named && pathOf(named, source.path);
+    if (path) additions.push({ given, named, path });
+    else if (!named || node?.type !== "scalar") refuse("it is no parameter with a `value:`");
     else if ((spans.get(node.at.from) ?? 0) > 1) refuse("an anchor shares it with other places");
     else {
       const edit = editOf(node, named, given, network);
@@ -56,11 +59,38 @@ export function writeBack(network: Network & { readonly tree: MapNode }, values:
       else refuse("its text is not written as a plain value");
     }
   }
-  if (problems.length > 0) return { text: undefined, rewritten: [], problems };
-  const text = [...edits]
+  let text = [...edits]
     .sort((a, b) => b.from - a.from)
     .reduce((t, { from, to, after }) => t.slice(0, from) + after + t.slice(to), source.text);
-  return { text, rewritten: edits.map(({ from: _, to: __, ...rewritten }) => rewritten), problems };
+  const rewritten = edits.map(({ from: _, to: __, ...edit }): Rewritten => edit);
+  for (const { given, named, path } of additions) {
+    const { at, unit } = named.value;
+    const written = unit ?? network.units.unitFor(named.value.dimension);
+    const after = `${digitsOf(given, written, boundsOf(named, network))} ${written.name}`.trim();
+    const added = withValue(text, path, after);
+    if (added) {
+      text = added.text;
+      rewritten.push({ name: given.name, before: at.source.text.slice(at.from, at.to), after, line: added.line });
+    } else {
+      const why = `'${source.path}' has no place for it under \`${path.slice(0, -1).join(": ")}\``;
+      report("not-written-back", network.at, { name: given.name, why });
+    }
+  }
+  return problems.length > 0 ? { text: undefined, rewritten: [], problems } : { text, rewritten, problems };
+}
+
+/** A value that is written in a file of others, and where this network's own may stand. */
+interface Addition {
+  readonly given: NewValue;
+  readonly named: Named;
+  readonly path: readonly string[];
+}
+
+/** Undefined where the value is written in the network's own file. */
+function pathOf({ name, value }: Named, own: string): readonly string[] | undefined {
+  const dot = name.indexOf(".");
+  if (dot >= 0) return ["compartments", name.slice(0, dot), "with", name.slice(dot + 1)];
+  return value.at.source.path === own ? undefined : ["parameters", name, "value"];
 }
 
 /** How often each place of the source stands in the tree: an alias brings it there again. */
