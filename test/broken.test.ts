@@ -77,6 +77,8 @@ const shownBy: Record<keyof typeof runEntries, string> = {
   "unknown-free": "fit/findings.test.ts",
   "nothing-to-fit": "fit/findings.test.ts",
   "no-points": "fit/findings.test.ts",
+  "no-signal-to-fit": "fit/run-codes.test.ts",
+  "spreads-differ": "fit/run-codes.test.ts",
   "too-few-points": "fit/run-codes.test.ts",
   "no-start": "fit/run-codes.test.ts",
   "fit-not-converged": "fit/run-codes.test.ts",

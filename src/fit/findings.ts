@@ -1,14 +1,17 @@
+import { roughness } from "../data/noise.js";
 import { fQuantile } from "../numerics/distributions.js";
 import { type Code, type DataOf, problem } from "../problems/report.js";
 import { formatQuantity } from "../units/format.js";
 import type { Estimates } from "./estimates.js";
-import type { FitFinding, FoundOptimum } from "./result.js";
+import type { FitFinding, FittedReading, FoundOptimum } from "./result.js";
 import type { Setup } from "./setup.js";
 
 /** What the findings look at. */
 export interface Ended {
   readonly setup: Setup;
   readonly estimates: Estimates;
+  /** One per block of the setup, in its order. */
+  readonly readings: readonly FittedReading[];
   readonly optima: readonly FoundOptimum[];
   readonly converged: boolean;
   readonly cancelled: boolean;
@@ -22,6 +25,7 @@ export function findingsOf(ended: Ended): FitFinding[] {
     ...bounds(ended),
     ...correlated(ended),
     ...residuals(ended),
+    ...unequal(ended),
     ...others(ended),
   ];
 }
@@ -94,6 +98,30 @@ function residuals(e: Ended): FitFinding[] {
     ...(significant ? [say(e, "residuals-correlated", { lag1, points, effective }, [], evidence)] : []),
   ];
 }
+
+/**
+ * Readings that share one variance for want of `noise:`, though they scatter more than tenfold differently. What a coarse
+ * reading drags the curve of a fine one off is smooth, and not counted.
+ */
+function unequal(e: Ended): FitFinding[] {
+  const spreads = e.readings.flatMap(({ key, time, measured, residual }, b) => {
+    const { declared, group } = e.setup.blocks[b];
+    const spread = roughness(time, residual);
+    // What is left of exact data is rounding.
+    return declared.noise || residual.length < 4 ? [] : [{ key, group, spread, floor: 1e-9 * rms(measured) }];
+  });
+  const groups = [...new Set(spreads.map((s) => s.group))];
+  return groups.flatMap((group) => {
+    const among = spreads.filter((s) => s.group === group).sort((a, b) => a.spread - b.spread);
+    const [narrow, wide] = [among[0], among[among.length - 1]];
+    const times = wide.spread / Math.max(narrow.spread, narrow.floor);
+    if (!(times > 10) || wide.spread <= 1e3 * wide.floor) return [];
+    const evidence = { wide: wide.spread, narrow: narrow.spread };
+    return [say(e, "spreads-differ", { wide: wide.key, narrow: narrow.key, times }, [wide.key, narrow.key], evidence)];
+  });
+}
+
+const rms = (y: Float64Array): number => Math.sqrt(y.reduce((sum, v) => sum + v * v, 0) / y.length);
 
 /** Other optima inside the 95 % region of the best one's sum of squares (Beale, J. R. Statist. Soc. B 22 (1960) 41-88). */
 function others(e: Ended): FitFinding[] {

@@ -1,10 +1,12 @@
 import { checkTrial } from "../check/trial.js";
 import { uncarried } from "../compile/carried.js";
 import { compile } from "../compile/compile.js";
+import { hasSignal } from "../data/signal.js";
 import type { Network } from "../model/network.js";
 import type { Trial } from "../model/trial.js";
 import type { Problem } from "../problems/problem.js";
-import { collector, hasErrors } from "../problems/report.js";
+import { collector, hasErrors, type Report } from "../problems/report.js";
+import { formatQuantity } from "../units/format.js";
 import { criteriaOf } from "./criteria.js";
 import { estimatesOf } from "./estimates.js";
 import { findingsOf } from "./findings.js";
@@ -67,6 +69,7 @@ export function fitWith(
   if (!setup) return { fit: undefined, problems };
   const watch: Watch = { cancelled: () => options.cancelled?.() ?? false, progress: options.progress ?? (() => {}) };
 
+  if (!anySignal(setup, report)) return { fit: undefined, problems };
   const weights = weightsFor(setup);
   const problem = problemWith(setup, weights.weight);
   const unknowns = setup.coordinates.length + problem.linear;
@@ -83,6 +86,15 @@ export function fitWith(
     return { fit: undefined, problems };
   }
   return { fit: resultOf(setup, settled, found), problems };
+}
+
+/** A fit to nothing but constants would be numbers made of nothing. One reading that moves is enough. */
+function anySignal({ blocks }: Setup, report: Report): boolean {
+  if (blocks.some((b) => hasSignal(b.measured))) return true;
+  const [{ key, declared, measured }] = blocks;
+  const value = formatQuantity(measured[0], declared.unit, 3);
+  report("no-signal-to-fit", declared.where, { key, value, others: blocks.length - 1 });
+  return false;
 }
 
 /** Points that the search for the right valley looks at; the last descent takes them all. */
@@ -118,6 +130,7 @@ function resultOf(setup: Setup, settled: Settled, found: SearchResult): Fit {
   );
   const converged = settled.converged && !found.cancelled;
   const n = setup.coordinates.length;
+  const readings = readingsOf(setup, settled);
   return {
     parameters: found.cancelled ? estimates.parameters.map(unsure) : estimates.parameters,
     values: valuesAt(setup, x),
@@ -134,9 +147,9 @@ function resultOf(setup: Setup, settled: Settled, found: SearchResult): Fit {
     stopped: found.cancelled ? "cancelled" : undefined,
     evaluations: setup.cost.evaluations,
     optima,
-    readings: readingsOf(setup, settled),
+    readings,
     held: setup.held.map((h, j) => ({ says: h.says, deviations: x[n + j] ?? 0 })),
-    findings: findingsOf({ setup, estimates, optima, converged, cancelled: found.cancelled }),
+    findings: findingsOf({ setup, estimates, readings, optima, converged, cancelled: found.cancelled }),
   };
 }
 

@@ -135,10 +135,6 @@ describe("what a fit must say", () => {
         ],
         { starts: 4 },
       );
-    const zero = of(() => 0, ["scale: free"]);
-    expect(zero.findings.map((f) => f.code)).toContain("cannot-tell");
-    const flat = of(() => 0.3, ["scale: free", "baseline: constant"]);
-    expect(flat.findings.length).toBeGreaterThan(0);
     const upside = of((c) => 0.5 - c, ["scale: free", "baseline: constant"]);
     expect(upside.findings.map((f) => f.code)).toContain("scale-not-positive");
   });

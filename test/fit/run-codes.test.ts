@@ -37,6 +37,41 @@ describe("what only a fit can find", () => {
     ]);
   });
 
+  test("no-signal-to-fit: zeros or a constant; one curve among them is enough", () => {
+    const truth = { bypass: 0, corner: 0.02, renewal: 2e-5 };
+    const blank = (value: () => number, reading: string[]) =>
+      synthetic(corner, truth, {
+        injection: pulse,
+        at: "bulk",
+        times: every(1.5, 40),
+        reading,
+        noise: (_, c) => value() - c,
+      });
+    const blanks = [blank(() => 0, []), blank(() => 0.3, ["scale: free", "baseline: constant"])];
+    for (const trial of blanks) {
+      const { fit: found, problems } = fit(corner, [trial]);
+      expect(problems.map((p) => p.code)).toEqual(["no-signal-to-fit"]);
+      expect(found).toBeUndefined();
+    }
+    expect(fit(corner, [blanks[0]]).problems[0].message).toBe("'Synthetic/bulk' never changes: every point is 0 g/L");
+    expect(fit(corner, blanks).problems[0].message).toContain("and the other reading does not change either");
+    expect(fit(corner, [blanks[0], inCorner(truth, 0.001)], { starts: 0 }).fit).toBeDefined();
+  });
+
+  test("spreads-differ: a coarse and a fine instrument without `noise:`", () => {
+    const truth = { bypass: 0.05, corner: 0.02, renewal: 2e-5 };
+    const [fine, coarse] = [inCorner(truth, 0.0002), inCorner(truth, 0.01)];
+    const codes = (trials: (typeof fine)[]) =>
+      fitted(corner, trials, { free: ["corner", "renewal"], starts: 0 }).findings.map((f) => f.code);
+    expect(codes([fine, coarse])).toContain("spreads-differ");
+    expect(codes([fine, inCorner(truth, 0.001)])).not.toContain("spreads-differ");
+    const noiseOf = (trial: typeof fine, sd: number) => ({
+      ...trial,
+      readings: trial.readings.map((r) => ({ ...r, noise: { floor: undefined, relative: sd } })),
+    });
+    expect(codes([noiseOf(fine, 0.001), noiseOf(coarse, 0.05)])).not.toContain("spreads-differ");
+  });
+
   test("no-start: a pump that takes more than the day's feed", () => {
     const network = networkOf(`network: A pumped loop
 format: 1

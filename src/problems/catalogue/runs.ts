@@ -30,6 +30,13 @@ export const runEntries = {
     fix: "give at least one reading a `file:` with times and values",
     example: { trials: 1 },
   }),
+  "no-signal-to-fit": entry({
+    severity: "error",
+    says: (d: { key: string; value: string; others: number }) =>
+      `'${d.key}' never changes: every point is ${d.value}${d.others > 0 ? `, and ${d.others === 1 ? "the other reading does not change" : `the ${d.others} other readings do not change`} either` : ""}`,
+    fix: "check the column, the detector and the dose; where no tracer came by, there is nothing that a network could explain",
+    example: { key: "Salt pulse/product", value: "0 g/L", others: 0 },
+  }),
   "too-few-points": entry({
     severity: "error",
     says: (d: { points: number; unknowns: number }) =>
@@ -103,6 +110,13 @@ export const runEntries = {
       `neighbouring residuals hang together (correlation ${d.lag1.toFixed(2)}): ${d.points} points say as much as ${d.effective.toFixed(0)} independent ones`,
     fix: "intervals are widened for it; look for what the model lacks, or for drift and smoothing in the logger",
     example: { lag1: 0.62, points: 780, effective: 183 },
+  }),
+  "spreads-differ": entry({
+    severity: "warning",
+    says: (d: { wide: string; narrow: string; times: number }) =>
+      `'${d.wide}' scatters ${d.times.toFixed(0)} times as much as '${d.narrow}', and neither declares its noise: both count the same, so that the coarse one rules the fit`,
+    fix: "say how noisy each is: `noise: {floor: …}` under the reading, from its blanks or repeats",
+    example: { wide: "Test 1/out", narrow: "Test 2/out", times: 40 },
   }),
   "several-optima": entry({
     severity: "warning",
