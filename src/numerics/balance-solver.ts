@@ -12,27 +12,29 @@ const mostSteps = 2000;
 const settled = 2e-15;
 
 /**
- * Solves inflow_i x_i - sum of flow_k x_from(k) = inflow_i b_i over many nodes that feed one another: a sparse M-matrix.
- * BiCGStab behind an incomplete LU in flow order, its answer refined until nothing changes but the last digits. Memory
- * linear in nodes and edges.
- * @param flow   of each edge, not negative
- * @param inflow of each node, edges from outside included; nodes without inflow keep x = b
+ * Solves excess_i x_i + sum_j a_ij (x_i - x_j) = b_i over many nodes that feed one another: a_ij is the part of what enters
+ * node i that comes from node j, excess_i the part that comes from outside. BiCGStab behind an incomplete LU in flow order;
+ * its answer is refined by residuals in this very form, where only differences of neighbours are rounded, so that digits
+ * last however often the flow goes round. Memory linear in nodes and edges.
  */
 export interface BalanceSolver {
   /** b becomes x. False where the iteration did not get there: b is then as near as it got. */
   solve(b: Float64Array): boolean;
 }
 
-export function balanceSolver(
-  graph: Graph,
-  flow: ArrayLike<number>,
-  inflow: ArrayLike<number>,
-): BalanceSolver | undefined {
+/**
+ * @param part   of each edge: what it brings over all that enters its end, not negative
+ * @param excess of each node; with the parts of its edges it makes 1, or all are 0
+ * @returns undefined where a pivot vanishes: nothing comes from outside
+ */
+export function balanceSolver(graph: Graph, part: ArrayLike<number>, excess: Float64Array): BalanceSolver | undefined {
   const n = graph.size;
-  const order = flowOrder(graph, flow, inflow);
+  const whole = new Float64Array(n).fill(1);
+  const order = flowOrder(graph, part, whole);
   const place = new Int32Array(n);
   for (let p = 0; p < n; p++) place[order[p]] = p;
-  const matrix = balanceMatrix(graph, flow, inflow, place, order);
+  const outside = excess.map((_, p) => excess[order[p]]);
+  const matrix = balanceMatrix(graph, part, outside, place);
   const factors = incompleteLu(matrix);
   if (!factors) return undefined;
   const space = bicgstabSpace(n);
@@ -61,8 +63,7 @@ export function balanceSolver(
         good = change <= 1e-12 * size;
         if (change <= settled * size || (good && change > last / 4)) break;
         last = change;
-        multiply(matrix, x, residual);
-        for (let p = 0; p < n; p++) residual[p] = rhs[p] - residual[p];
+        leftOver(matrix, outside, rhs, x, residual);
       }
       for (let p = 0; p < n; p++) b[order[p]] = x[p];
       return good;
@@ -70,22 +71,36 @@ export function balanceSolver(
   };
 }
 
-/** I - flow / inflow, rows and columns in the given order, columns ascending, edges between the same two nodes added. */
+/** b - A x, summed as differences. */
+function leftOver(
+  { size, start, column, value }: SparseRows,
+  excess: Float64Array,
+  b: Float64Array,
+  x: Float64Array,
+  r: Float64Array,
+): void {
+  for (let i = 0; i < size; i++) {
+    let sum = b[i] - excess[i] * x[i];
+    for (let e = start[i]; e < start[i + 1]; e++) if (column[e] !== i) sum += value[e] * (x[i] - x[column[e]]);
+    r[i] = sum;
+  }
+}
+
+/** Rows and columns in the given order, columns ascending, edges between the same two nodes added; -a_ij beside the sum. */
 function balanceMatrix(
   { size, from, to }: Graph,
-  flow: ArrayLike<number>,
-  inflow: ArrayLike<number>,
+  part: ArrayLike<number>,
+  excess: Float64Array,
   place: Int32Array,
-  order: Int32Array,
 ): SparseRows {
   // Edges by column first: handing them out in that order leaves every row's columns ascending.
   const byColumn = new Int32Array(size + 1);
-  for (let k = 0; k < flow.length; k++) byColumn[place[from[k]] + 1]++;
+  for (let k = 0; k < part.length; k++) byColumn[place[from[k]] + 1]++;
   for (let p = 0; p < size; p++) byColumn[p + 1] += byColumn[p];
-  const edges = new Int32Array(flow.length);
-  for (let k = 0; k < flow.length; k++) edges[byColumn[place[from[k]]]++] = k;
+  const edges = new Int32Array(part.length);
+  for (let k = 0; k < part.length; k++) edges[byColumn[place[from[k]]]++] = k;
   const start = new Int32Array(size + 1);
-  for (let k = 0; k < flow.length; k++) start[place[to[k]] + 1]++;
+  for (let k = 0; k < part.length; k++) start[place[to[k]] + 1]++;
   for (let p = 0; p < size; p++) start[p + 1] += start[p] + 1; // and the diagonal
   const column = new Int32Array(start[size]);
   const value = new Float64Array(start[size]);
@@ -101,14 +116,22 @@ function balanceMatrix(
     for (; e < byColumn[c]; e++) {
       const k = edges[e];
       const row = place[to[k]];
-      const part = inflow[order[row]] > 0 ? flow[k] / inflow[order[row]] : 0;
+      if (row === c) continue; // what a node sends to itself cancels
       const before = next[row] - 1;
-      if (before >= start[row] && column[before] === c) value[before] -= part;
+      if (before >= start[row] && column[before] === c) value[before] -= part[k];
       else {
         column[next[row]] = c;
-        value[next[row]++] = -part;
+        value[next[row]++] = -part[k];
       }
     }
+  }
+  for (let row = 0; row < size; row++) {
+    let [sum, at] = [excess[row], -1];
+    for (let e = start[row]; e < next[row]; e++) {
+      if (column[e] === row) at = e;
+      else sum -= value[e];
+    }
+    value[at] = sum > 0 ? sum : 1;
   }
   return packed(size, start, next, column, value);
 }

@@ -1,9 +1,10 @@
 import type { Report } from "../problems/report.js";
 import type { Source, Span } from "../text/source.js";
+import { isUnitFault, parseUnit } from "../units/parse.js";
 import { numberAt, textOf } from "./cells.js";
-import { type CsvOptions, readCsv } from "./csv.js";
+import { type CsvOptions, type CsvRow, type CsvTable, readCsv } from "./csv.js";
 import { decodeText } from "./decode.js";
-import { type ColumnName, dataRows, decimalOf } from "./table.js";
+import { type ColumnName, type DataRows, dataRows, decimalOf } from "./table.js";
 
 /** Visits a row: cell i of the columns asked stands at bytes[bounds[2 i], bounds[2 i + 1]); the array is used again. */
 export type RowVisitor = (bounds: Int32Array) => void;
@@ -55,7 +56,8 @@ export function openWideCsv(
     report("csv-empty", { source, from: 0, to: 0 }, { file: path });
     return undefined;
   }
-  const start = startOfLine(bytes, data.rows[0].line);
+  const before = lastBefore(table, data, asked);
+  const start = before ? startOfLine(bytes, before.line + 1) : 0;
   const separator = new TextEncoder().encode(table.separator);
   const point = decimalOf(table, data, options) === "comma" ? comma : dot;
   return {
@@ -68,6 +70,19 @@ export function openWideCsv(
       return { source, from: before, to: before + Math.max(1, textOf(bytes, from, to).length) };
     },
   };
+}
+
+/**
+ * The row before the data, which begin behind the line on which it ends. What was taken for a row of units, since no cell
+ * of it is a number, is one only where a unit stands in it: names of cells look much the same.
+ */
+function lastBefore(table: CsvTable, data: DataRows, asked: readonly ColumnName[]): CsvRow | undefined {
+  const first = table.rows.indexOf(data.rows[0]);
+  const before = table.rows[first - 1];
+  if (!before || asked.every(({ column }, i) => column === before.cells[data.columns[i]])) return before;
+  const isUnit = (cell = ""): boolean => cell !== "" && !isUnitFault(parseUnit(cell.replace(/^[[(]|[\])]$/g, "")));
+  const units = asked.some(({ unit }, i) => unit && isUnit(before.cells[data.columns[i]]));
+  return units || first < 2 ? before : table.rows[first - 2];
 }
 
 /** UTF-8 without a byte-order mark. A table in plain ASCII, as most are, is taken as it is. */

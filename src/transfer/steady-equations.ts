@@ -52,7 +52,7 @@ export class SteadyEquations {
         this.groupOf[i] = g;
         place[i] = p;
       });
-      const solver = this.solverOf(group, g, place, inflow, flow);
+      const solver = this.solverOf(group, g, place, inflow);
       if (solver) circles.push({ first, size: group.length, solver });
       first += group.length;
     });
@@ -106,13 +106,7 @@ export class SteadyEquations {
   }
 
   /** Of a group whose nodes are numbered by `place`; undefined for one node that does not feed itself. */
-  private solverOf(
-    group: Int32Array,
-    g: number,
-    place: Int32Array,
-    inflow: Float64Array,
-    flow: Float64Array,
-  ): BalanceSolver | undefined {
+  private solverOf(group: Int32Array, g: number, place: Int32Array, inflow: Float64Array): BalanceSolver | undefined {
     const { start, edges } = this.into;
     const links: number[] = [];
     for (const i of group) {
@@ -123,13 +117,11 @@ export class SteadyEquations {
     }
     const size = group.length;
     if (links.length === 0 || inflow[group[0]] === 0) return undefined;
+    const excess = Float64Array.from(group, (i) => this.fromOutside(i));
     if (size <= mostDense) {
       const matrix = new Float64Array(size * size);
       for (const k of links) matrix[place[this.to[k]] * size + place[this.from[k]]] += this.weight[k];
-      const factors = gth(
-        matrix,
-        Float64Array.from(group, (i) => this.fromOutside(i)),
-      );
+      const factors = gth(matrix, excess);
       if (factors === "singular") return unsolvable;
       return {
         solve(b) {
@@ -143,8 +135,7 @@ export class SteadyEquations {
       from: Int32Array.from(links, (k) => place[this.from[k]]),
       to: Int32Array.from(links, (k) => place[this.to[k]]),
     };
-    const own = Float64Array.from(links, (k) => flow[k]);
-    const passing = Float64Array.from(group, (i) => inflow[i]);
-    return balanceSolver(graph, own, passing) ?? unsolvable;
+    const part = Float64Array.from(links, (k) => this.weight[k]);
+    return balanceSolver(graph, part, excess) ?? unsolvable;
   }
 }
