@@ -60,7 +60,7 @@ function namesTable(plant: Plant): string {
   const { network, env } = plant;
   const at = locator(plant);
   const rows = network.names
-    .filter((n) => n.role !== "feed-flow")
+    .filter((n) => n.role === "constant" || n.role === "parameter")
     .map((n) => {
       const unit = n.value.unit ?? network.units.unitFor(n.value.dimension);
       const sd = n.value.sd?.(env);
