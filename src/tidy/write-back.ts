@@ -64,8 +64,8 @@ export function writeBack(network: Network & { readonly tree: MapNode }, values:
     .reduce((t, { from, to, after }) => t.slice(0, from) + after + t.slice(to), source.text);
   const rewritten = edits.map(({ from: _, to: __, ...edit }): Rewritten => edit);
   for (const { given, named, path } of additions) {
-    const { at, unit } = named.value;
-    const written = unit ?? network.units.unitFor(named.value.dimension);
+    const { at, unit, expression } = named.value;
+    const written = plainUnit(expression) ?? unit ?? network.units.unitFor(named.value.dimension);
     const after = `${digitsOf(given, written, boundsOf(named, network))} ${written.name}`.trim();
     const added = withValue(text, path, after);
     if (added) {
