@@ -28,6 +28,7 @@ export { parseTrial } from "./parse/trial.js";
 export { printProblems } from "./problems/print.js";
 export type { Problem } from "./problems/problem.js";
 export { type SteadyState, steadyState } from "./reaction/steady.js";
+export { meanAges, meanLives } from "./simulate/ages.js";
 export { ode } from "./simulate/ode.js";
 export { tracerResponse } from "./simulate/tracer.js";
 export { transferFunction } from "./transfer/transfer-function.js";

@@ -3,14 +3,14 @@ import type { Network } from "../model/network.js";
 import type { Report } from "../problems/report.js";
 import { nearest } from "../text/nearest.js";
 import type { Span } from "../text/source.js";
-import { placeNames } from "./places.js";
+import { isCell, placeNames } from "./places.js";
 import { sameKind } from "./same-kind.js";
 
 /** Does a duty fit a network: are its feeds, places and constants there, and does it say what every feed brings? */
 export function checkDuty(network: Network, duty: Duty, report: Report): void {
   const { feeds, outlets, left } = placeNames(network);
   const look = (name: string, at: Span, wanted: string, among: readonly string[]): boolean => {
-    if (among.includes(name)) return true;
+    if (among.includes(name) || (wanted.includes("compartment") && isCell(network, name))) return true;
     report("unknown-place", at, { name, nearest: nearest(name, among), wanted, known: among });
     return false;
   };

@@ -4,15 +4,20 @@ import type { Network } from "../model/network.js";
 export interface PlaceNames {
   readonly feeds: readonly string[];
   readonly outlets: readonly string[];
-  /** Compartments, members of repeats, and parts that have one inlet. */
+  /** Compartments, members of repeats, inlets of zoned bodies, and parts that have one inlet. */
   readonly entered: readonly string[];
-  /** Compartments, members of repeats, and parts that have one outlet. */
+  /** Compartments, members of repeats, outlets of zoned bodies, and parts that have one outlet. */
   readonly left: readonly string[];
 }
 
 /** All of them, in file order. */
 export function placeNames({ feeds, compartments, outlets, groups }: Network): PlaceNames {
-  const bodies = compartments.map((c) => c.name);
+  const bodies = (side: "inlets" | "outlets"): string[] =>
+    compartments.flatMap(({ name, zones }) => {
+      if (!zones) return [name];
+      const terminals = zones[side].map((t) => `${name}.${t.name}`);
+      return terminals.length === 1 ? [name, ...terminals] : terminals;
+    });
   const members = compartments.flatMap(({ name, counts }) =>
     Array.from({ length: counts.repeat ?? 0 }, (_, i) => `${name}.${i + 1}`),
   );
@@ -20,7 +25,13 @@ export function placeNames({ feeds, compartments, outlets, groups }: Network): P
   return {
     feeds: feeds.map((f) => f.name),
     outlets: outlets.map((o) => o.name),
-    entered: [...bodies, ...parts("inlets"), ...members],
-    left: [...bodies, ...parts("outlets"), ...members],
+    entered: [...bodies("inlets"), ...parts("inlets"), ...members],
+    left: [...bodies("outlets"), ...parts("outlets"), ...members],
   };
 }
+
+/** Is it a cell of a zoned body, as `core.c17`? There may be a million of them, so they stand in no list of names. */
+export const isCell = ({ compartments }: Network, name: string): boolean =>
+  compartments.some(
+    (c) => c.zones && name.startsWith(`${c.name}.`) && c.zones.names.numberOf(name.slice(c.name.length + 1)) >= 0,
+  );

@@ -4,7 +4,7 @@ import type { Report } from "../problems/report.js";
 import { nearest } from "../text/nearest.js";
 import { siUnit } from "../units/describe.js";
 import { type Dimension, dimensions, isRatio, over, sameDimension } from "../units/dimension.js";
-import { placeNames } from "./places.js";
+import { isCell, placeNames } from "./places.js";
 import { sameKind } from "./same-kind.js";
 
 /**
@@ -23,7 +23,7 @@ function checkPlaces(network: Network, trial: Trial, report: Report): void {
   const { feeds, outlets, entered, left } = placeNames(network);
   const constants = network.names.filter((n) => n.role === "constant").map((n) => n.name);
   const look = (name: string, at: Parameters<Report>[1], wanted: string, among: readonly string[]): void => {
-    if (!among.includes(name))
+    if (!among.includes(name) && !(wanted.includes("compartment") && isCell(network, name)))
       report("unknown-place", at, { name, nearest: nearest(name, among), wanted, known: among });
   };
   for (const { at, where } of trial.injections) {

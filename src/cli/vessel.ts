@@ -26,7 +26,15 @@ export function bodiesOf(plant: Plant): Body[] {
     if (c.values.volume === undefined && !c.zones) return [];
     const volume = c.kind.volume(kindValues(c, env));
     const flow = through.get(c.name) || (exchanged.get(c.name) ?? 0);
-    return [{ name: c.name, kind: c.kind.name, volume, flow, spaceTime: volume === 0 ? 0 : volume / flow }];
+    return [
+      {
+        name: c.name,
+        kind: c.zones ? `${c.kind.name}, ${c.zones.volume.length} cells` : c.kind.name,
+        volume,
+        flow,
+        spaceTime: volume === 0 ? 0 : volume / flow,
+      },
+    ];
   });
 }
 
