@@ -24,8 +24,17 @@ export interface RadauStep {
    * @param guess polynomial to start from, if its h is not 0
    * @param scale size of an error of 1, per state
    * @param wanted error of the iteration in that measure
+   * @param noise what rounding in the right-hand side makes of a correction, in that measure: nothing below is asked
    */
-  solve(t: number, h: number, y: Float64Array, scale: Float64Array, guess: StepPolynomial, wanted: number): NewtonEnd;
+  solve(
+    t: number,
+    h: number,
+    y: Float64Array,
+    scale: Float64Array,
+    guess: StepPolynomial,
+    wanted: number,
+    noise: number,
+  ): NewtonEnd;
   /**
    * Size of the local error in units of the scale, root mean square; Infinity where it is not finite.
    * @param f rhs at (t, y)
@@ -52,6 +61,8 @@ export function radauStep({ size: n, rhs }: StiffProblem, k: RadauCoefficients, 
   const part = new Float64Array(n);
   const local = new Float64Array(n);
   const slope = new Float64Array(n);
+  // Noise that differs from stage to stage grows by this in w.
+  const noiseGain = Math.hypot(...k.tInverse) / Math.sqrt(s);
   const predicted = new Float64Array(n); // what the guess made of the last stage
   let predictedFrom = 0; // length of the step that it came from
   let confidence = 1; // theta / (1 - theta) of the step before
@@ -65,7 +76,7 @@ export function radauStep({ size: n, rhs }: StiffProblem, k: RadauCoefficients, 
     contraction: 0,
     cut: 1,
 
-    solve(t, h, y, scale, guess, wanted) {
+    solve(t, h, y, scale, guess, wanted, noise) {
       step.iterations = 0;
       step.evaluations = 0;
       if (guess.h === 0) {
@@ -114,11 +125,13 @@ export function radauStep({ size: n, rhs }: StiffProblem, k: RadauCoefficients, 
           const theta = iteration === 2 ? ratio : Math.sqrt(ratio * ratioBefore);
           ratioBefore = ratio;
           step.contraction = theta;
-          if (theta >= 0.99) return size <= roundingOf(y, scale) ? "converged" : "diverged";
+          const drowned = size < Math.min(1, noise * noiseGain);
+          if (theta >= 0.99) return drowned ? "converged" : "diverged";
           confidence = theta / (1 - theta);
           const left = step.mostIterations - iteration;
           const expected = (confidence * size * theta ** left) / wanted;
           if (left > 0 && expected >= 1) {
+            if (drowned) return "converged";
             step.cut = 0.8 * Math.max(1e-4, Math.min(20, expected)) ** (-1 / (4 + left));
             return "slow";
           }
@@ -199,11 +212,4 @@ export function norm(v: Float64Array, scale: Float64Array): number {
   let sum = 0;
   for (let m = 0; m < v.length; m++) sum += (v[m] / scale[m]) ** 2;
   return Math.sqrt(sum / v.length);
-}
-
-/** What rounding of the state alone makes of a correction. */
-function roundingOf(y: Float64Array, scale: Float64Array): number {
-  let largest = 0;
-  for (let m = 0; m < y.length; m++) largest = Math.max(largest, Math.abs(y[m]) / scale[m]);
-  return 10 * Number.EPSILON * largest;
 }

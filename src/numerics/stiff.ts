@@ -88,6 +88,7 @@ export function radauIntegrator(given: StiffProblem, relative: number, stages = 
     let fresh = false; // the Jacobian belongs to this very state
     let stale = true; // and should
     let factored = false;
+    let noise = 0;
     let gapSeen = false;
     let again = true; // the first step, or after a rejection
     const shorten = (part: number): void => {
@@ -121,8 +122,9 @@ export function radauIntegrator(given: StiffProblem, relative: number, stages = 
           shorten(0.5);
           continue;
         }
+        noise = noiseOf(y);
       }
-      const end = method.solve(t, h, y, scale, last, wanted);
+      const end = method.solve(t, h, y, scale, last, wanted, noise);
       counts.rhs += method.evaluations;
       iterations += method.iterations;
       if (end !== "converged") {
@@ -180,6 +182,18 @@ export function radauIntegrator(given: StiffProblem, relative: number, stages = 
   function rescale(p: StiffStretch, y: Float64Array): void {
     for (let i = 0; i < n; i++)
       scale[i] = (typeof p.absolute === "number" ? p.absolute : p.absolute[i]) + p.relative * Math.abs(y[i]);
+  }
+
+  /** Rounding of the terms that the right-hand side adds up, as it shows in a correction: with h it may outgrow the tolerance. */
+  function noiseOf(y: Float64Array): number {
+    const { start, column } = jacobian.pattern;
+    for (let i = 0; i < n; i++) {
+      let sum = 0;
+      for (let k = start[i]; k < start[i + 1]; k++) sum += Math.abs(jacobian.value[k] * y[column[k]]);
+      row[i] = (i % 2 === 0 ? 2 : 1) * Number.EPSILON * sum; // uneven, so that it does not cancel
+    }
+    systems.real.solve(row);
+    return Math.max(norm(row, scale), 10 * Number.EPSILON * norm(y, scale));
   }
 
   /** By the size of the first two derivatives; see Hairer, Nørsett & Wanner, vol. I (1993), sec. II.4. */
