@@ -26,12 +26,12 @@ test.each(readdirSync(folder).filter((f) => f.endsWith(".yaml")))("%s", async (f
   await expect(`${printProblems(problems)}\n`).toMatchFileSnapshot(`broken/${file.replace(/\.yaml$/, ".txt")}`);
 });
 
-/** Eleven megabytes are no file to keep. */
+/** Files that are too large to keep. */
 test("file-too-large", () => {
   const { problems } = parseAny("network: A title\n".padEnd(11 * 1024 * 1024, "#"), { path: "large.yaml" });
   for (const p of problems) seen.add(p.code);
   expect(printProblems(problems)).toMatchInlineSnapshot(`
-    "large.yaml:1:1 file-too-large: the file has 11 MB; a document may have 10 MB
+    "large.yaml:1:1 file-too-large: the file has 11 MB; a document may have 2 MB
       1 | network: A title
         | ^
       fix: keep tables in CSV files and name them here"
@@ -63,6 +63,22 @@ test("use-too-deep", () => {
       base of a49.yaml:3:11
       base of a48.yaml:3:11"
   `);
+});
+
+test("too-many-parts", () => {
+  const { problems } = parseAny(`network: A\noutlets: [${"a, ".repeat(50_000)}a]\n`, { path: "long.yaml" });
+  for (const p of problems) seen.add(p.code);
+  expect(problems.map((p) => p.code)).toEqual(["too-many-parts"]);
+});
+
+test("and-more", () => {
+  const constants = Array.from({ length: 300 }, (_, i) => `c${i}: 1 L`).join(", ");
+  const { problems } = parseAny(
+    `network: A\nformat: 1\nconstants: {${constants}}\nfeeds: {f: {flow: 1 L/min, to: a}}\ncompartments: {a: {kind: stirred, volume: 1 L, to: b}}\noutlets: [b]\n`,
+    { path: "many.yaml" },
+  );
+  for (const p of problems) seen.add(p.code);
+  expect(problems.map((p) => p.code)).toEqual([...Array(100).fill("unused-name"), "and-more"]);
 });
 
 test("every code that a file can show has a broken example, named by it", () => {

@@ -5,6 +5,8 @@ const window = 100;
 /** Shown before the mark when the line is cut. */
 const lead = 30;
 const tabWidth = 4;
+/** UTF-16 units before the mark, and half of those after its start, that are looked at. */
+const near = 1000;
 
 export interface Excerpt {
   readonly line: number;
@@ -17,13 +19,16 @@ export interface Excerpt {
 /** The first line of a span as a terminal can show it, and where in it the marks stand. */
 export function excerpt(span: Span): Excerpt {
   const { line, column, endLine, endColumn } = placeOf(span);
-  const raw = lineText(span.source, line);
-  const first = Math.min(column - 1, raw.length);
-  const last = endLine > line ? raw.trimEnd().length : Math.min(endColumn - 1, raw.length);
+  const whole = lineText(span.source, line);
+  const start = Math.min(column - 1, whole.length);
+  const end = endLine > line ? whole.trimEnd().length : Math.min(endColumn - 1, whole.length);
+  // Of a very long line only what may be seen is looked at.
+  const skipped = Math.max(0, start - near);
+  const raw = whole.slice(skipped, start + 2 * near);
   const cells = cellsOf(raw);
-  const from = columnAt(cells, first);
-  const to = Math.max(from + 1, columnAt(cells, last));
-  return cut(cells, line, from, to);
+  const from = columnAt(cells, start - skipped);
+  const to = Math.max(from + 1, columnAt(cells, Math.min(end - skipped, raw.length)));
+  return cut(cells, line, from, to, skipped > 0, skipped + raw.length < whole.length);
 }
 
 /** One printed character and the columns that it takes. */
@@ -56,9 +61,17 @@ function columnAt(cells: readonly Cell[], offset: number): number {
   return column;
 }
 
-function cut(cells: readonly Cell[], line: number, from: number, to: number): Excerpt {
+function cut(
+  cells: readonly Cell[],
+  line: number,
+  from: number,
+  to: number,
+  moreBefore: boolean,
+  moreAfter: boolean,
+): Excerpt {
   const total = cells.reduce((sum, cell) => sum + cell.width, 0);
-  if (total <= window) return { line, text: cells.map((c) => c.text).join(""), before: from, under: to - from };
+  if (total <= window && !moreBefore && !moreAfter)
+    return { line, text: cells.map((c) => c.text).join(""), before: from, under: to - from };
   const start = Math.max(0, Math.min(from - lead, total - window));
   const end = start + window;
   let column = 0;
@@ -71,11 +84,11 @@ function cut(cells: readonly Cell[], line: number, from: number, to: number): Ex
     }
     column += cell.width;
   }
-  const head = start > 0 ? "…" : "";
+  const head = start > 0 || moreBefore ? "…" : "";
   const before = from - shift + head.length;
   return {
     line,
-    text: `${head}${text}${end < total ? "…" : ""}`,
+    text: `${head}${text}${end < total || moreAfter ? "…" : ""}`,
     before,
     under: Math.max(1, Math.min(to, end) - from),
   };

@@ -48,8 +48,11 @@ function mendMap(map: MapNode, report: Report): MapNode {
     if (!braces) entries.push(entry);
     else if (isLone(map, entry)) entries.push(mendGlued(entry, report));
     else {
-      const tails = map.entries.slice(i + 1).map((e) => (isLone(map, e) ? e.key : undefined));
-      const cut = mendCut(entry, tails, report);
+      const tail = (k: number): ScalarNode | undefined => {
+        const next = map.entries[i + 1 + k];
+        return next && isLone(map, next) ? next.key : undefined;
+      };
+      const cut = mendCut(entry, tail, report);
       entries.push(cut.entry);
       i += cut.tails;
     }
@@ -59,8 +62,8 @@ function mendMap(map: MapNode, report: Report): MapNode {
 
 /** A key with no colon after it. */
 function isLone(map: MapNode, { key, value }: Entry): boolean {
-  const noColon = !/^\s*:/.test(map.at.source.text.slice(key.at.to, map.at.to));
-  return key.plain && value.type === "scalar" && value.empty && value.text === "" && noColon;
+  if (!key.plain || value.type !== "scalar" || !value.empty || value.text !== "") return false;
+  return !/^\s*:/.test(map.at.source.text.slice(key.at.to, map.at.to));
 }
 
 /** `{b:1 L}`; any other lone key stays as it is. */
@@ -73,27 +76,32 @@ function mendGlued(entry: Entry, report: Report): Entry {
   return { key: part(key, key.at.from, colon), value: part(key, colon + 1, key.at.to) };
 }
 
-/** A value whose tail a comma cut off: a call whose bracket is open, a decimal comma, or the rest of a text. `tails`: the lone keys that follow. */
+/** A value whose tail a comma cut off: a call whose bracket is open, a decimal comma, or the rest of a text. `tailAt(k)`: the k-th of the keys that follow, where it is a lone one. */
 function mendCut(
   entry: Entry,
-  tails: readonly (ScalarNode | undefined)[],
+  tailAt: (k: number) => ScalarNode | undefined,
   report: Report,
 ): { entry: Entry; tails: number } {
   const head = entry.value;
   const none = { entry, tails: 0 };
-  if (!isPlain(head) || !tails[0]) return none;
+  const first = isPlain(head) ? tailAt(0) : undefined;
+  if (!isPlain(head) || !first) return none;
   let n = 0;
   let whole = head;
   let written = "";
-  for (let tail = tails[0]; tail && (openBrackets(whole.text) > 0 || isProse(tail)); tail = tails[n] as ScalarNode) {
+  for (
+    let tail: ScalarNode | undefined = first;
+    tail && (openBrackets(whole.text) > 0 || isProse(tail));
+    tail = tailAt(n)
+  ) {
     if (n === 0 && isDecimal(head, tail)) break;
     whole = part(head, head.at.from, tail.at.to);
     written = quote(whole.text);
     n++;
   }
-  if (n === 0 && isDecimal(head, tails[0])) {
-    written = `${head.text}.${tails[0].text}`;
-    whole = { ...part(head, head.at.from, tails[0].at.to), text: written };
+  if (n === 0 && isDecimal(head, first)) {
+    written = `${head.text}.${first.text}`;
+    whole = { ...part(head, head.at.from, first.at.to), text: written };
     n = 1;
   }
   if (n === 0) return none;

@@ -9,7 +9,9 @@ import { mendTraps } from "./traps.js";
 import type { MapNode } from "./tree.js";
 
 const megabyte = 1024 * 1024;
-const largest = 10 * megabyte;
+const largest = 2 * megabyte;
+/** A second's work, and a thousand vessels' worth. */
+const mostParts = 50_000;
 
 /**
  * The tree of a YAML 1.2 text, every node with its place; scalars keep their text (a number is a string as typed).
@@ -23,6 +25,10 @@ export function readYaml(source: Source, report: Report): MapNode | undefined {
   }
   if (!isText(source.text)) {
     report("not-text", { source: { ...source, text: "" }, from: 0, to: 0 }, { file: source.path });
+    return undefined;
+  }
+  if (partsIn(source.text) > mostParts) {
+    report("too-many-parts", start, { limit: mostParts });
     return undefined;
   }
   const document = parse(source);
@@ -54,4 +60,11 @@ function parse(source: Source): Document.Parsed | "too deep" {
     if (e instanceof RangeError) return "too deep";
     throw e;
   }
+}
+
+/** Signs that begin a key or a value, within texts too, for that is cheaper to tell than what they mean; four lines are worth one. */
+function partsIn(text: string): number {
+  let parts = 0;
+  for (const [sign] of text.matchAll(/[{[,&*!\n]|[:?-](?=\s)/g)) parts += sign === "\n" ? 0.25 : 1;
+  return parts;
 }

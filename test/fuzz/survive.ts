@@ -27,14 +27,19 @@ function commandsFor(path: string, corpus: Files): string[][] {
 }
 
 /** What is wrong with how the program took an input; undefined where it took it well. */
-export async function faultOf({ path, bytes }: Input, corpus: Files): Promise<string | undefined> {
-  for (const args of commandsFor(path, corpus)) {
+export async function faultOf(
+  { path, bytes }: Input,
+  corpus: Files,
+  commands = commandsFor(path, corpus),
+): Promise<string | undefined> {
+  for (const args of commands) {
     let said = "";
     const read = (file: string): Uint8Array | undefined => (file === path ? bytes : corpus.get(file));
     const io = {
       read,
       exists: (file: string) => read(file) !== undefined,
       list: () => undefined,
+      makeFolder: () => undefined,
       write: (file: string) => {
         said += `wrote ${file}\n`;
       },

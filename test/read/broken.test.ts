@@ -7,7 +7,7 @@ import { check } from "./read.js";
 
 /** Files in which a code shows in a second form, or codes that no small file of their own can show. */
 const again = { "unclosed-comment": "unclosed", "decimal-comma": "comma-in-braces", "not-yet-key": "not-yet" };
-const notAlone = ["file-too-large", "wrong-document"];
+const notAlone = ["file-too-large", "too-many-parts", "and-more", "wrong-document"];
 
 const codes = [...Object.keys(yamlEntries), ...Object.keys(shapeEntries)].filter((code) => !notAlone.includes(code));
 const files = [...codes.map((code) => [code, code]), ...Object.entries(again)];

@@ -19,9 +19,21 @@ export const yamlEntries = {
   }),
   "file-too-large": entry<{ megabytes: number }>({
     severity: "error",
-    says: (d) => `the file has ${d.megabytes} MB; a document may have 10 MB`,
+    says: (d) => `the file has ${d.megabytes} MB; a document may have 2 MB`,
     fix: "keep tables in CSV files and name them here",
     example: { megabytes: 11 },
+  }),
+  "too-many-parts": entry<{ limit: number }>({
+    severity: "error",
+    says: (d) => `the file is made of more than ${d.limit} keys, values and lines`,
+    fix: "keep tables in CSV files and name them here",
+    example: { limit: 50_000 },
+  }),
+  "and-more": entry<{ code: string; told: number }>({
+    severity: "warning",
+    says: (d) => `there are more than ${d.told} problems '${d.code}'; the others are not told`,
+    fix: "correct these, and check again",
+    example: { code: "unused-name", told: 100 },
   }),
   "too-deep": entry<{ limit: number }>({
     severity: "error",
