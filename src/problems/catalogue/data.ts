@@ -51,7 +51,7 @@ export const dataEntries = {
   }),
   "column-unit": entry<{ column: string; says: string; declared: string }>({
     severity: "warning",
-    says: ({ column, says, declared }) => `the file gives '${column}' in ${says}, the trial in ${declared}`,
+    says: ({ column, says, declared }) => `the file gives '${column}' in ${says}, the document in ${declared}`,
     fix: ({ says }) => `write \`unit: ${says}\` if the file is right`,
   }),
   "unit-missing": entry<{ column: string }>({
