@@ -1,7 +1,7 @@
 import { kindValues } from "../compile/evaluate.js";
 import type { Plant } from "../compile/plant.js";
 import type { Check } from "../model/network.js";
-import { moments, type NodeMoments } from "./moments.js";
+import { meanAges } from "./ages.js";
 
 /** What a statement of a network came to; value and `equals` in SI. */
 export interface CheckResult {
@@ -28,25 +28,13 @@ export function runChecks(plant: Plant): CheckResult[] {
   });
 }
 
-/** Mean residence time by outlet, s, and of `all` outlets together: each feed counts by the flow that it sends there. */
-function meanTimes({ feeds, outlets, ...plant }: Plant): Map<string, number> {
-  const byFeed = feeds.map((f): NodeMoments[] =>
-    moments({ feeds, outlets, ...plant }, plant.entry.get(f.name) ?? f.node),
-  );
-  const mean = (nodes: readonly number[]): number => {
-    let [flow, age] = [0, 0];
-    feeds.forEach((f, i) => {
-      for (const node of nodes) {
-        const { share, mean: time } = byFeed[i][node];
-        if (!(share > 0)) continue;
-        flow += f.flow * share;
-        age += f.flow * share * time;
-      }
-    });
-    return age / flow;
-  };
-  const all: [string, number] = ["all", mean(outlets.map((o) => o.node))];
-  return new Map([...outlets.map((o): [string, number] => [o.name, mean([o.node])]), all]);
+/** Mean residence time by outlet, s, and of `all` outlets together, whichever feed it came by: the age of what leaves. */
+function meanTimes(plant: Plant): Map<string, number> {
+  const ages = meanAges(plant);
+  const wet = plant.outlets.filter((o) => o.flow > 0);
+  const sum = (of: (o: Plant["outlets"][number]) => number): number => wet.reduce((total, o) => total + of(o), 0);
+  const all: [string, number] = ["all", sum((o) => o.flow * ages[o.node]) / sum((o) => o.flow)];
+  return new Map([...plant.outlets.map((o): [string, number] => [o.name, ages[o.node]]), all]);
 }
 
 function volumeOf({ network, env, volume }: Plant, name: string): number {
