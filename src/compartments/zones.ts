@@ -131,6 +131,7 @@ function columnKey(what: string): Record<"column", KeyShape> {
       shape: text,
       says: `The column that holds ${what}: its header as it stands in the file, or its position from 1.`,
       required: true,
+      example: "volume_L",
     },
   };
 }

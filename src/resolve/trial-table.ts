@@ -38,11 +38,6 @@ export function resolveTable(node: MapNode, anyWord: boolean, files: Files, repo
   const valueUnit = resolveDetectorUnit(child(node, "value"), "unit", anyWord, report);
   const units = checkUnits(node, timeUnit, valueUnit, report);
   if (content === undefined) report("file-missing", fileNode.at, { file });
-  for (const key of ["time", "value"] as const) {
-    if (!child(node, key)) {
-      report("missing-key", fileNode.at, { key, where: "what names a table", example: columnExample[key] });
-    }
-  }
   if (content === undefined || !time || !value || !valueUnit || format === "faulty" || !units) return undefined;
   const spec = {
     file: full,
@@ -56,8 +51,6 @@ export function resolveTable(node: MapNode, anyWord: boolean, files: Files, repo
   const read = readSeries({ path: full, text: decodeText(content) }, spec, report);
   return read && { ...read, valueUnit };
 }
-
-const columnExample = { time: "{column: t, unit: min}", value: "{column: c, unit: g/L}" } as const;
 
 const minute: Unit = { name: "min", factor: 60, offset: 0, dimension: dimensions.time };
 

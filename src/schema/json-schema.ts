@@ -1,5 +1,6 @@
 import { parse } from "yaml";
 import { type DocumentKind, documentKinds, type KeyShape, type Shape, sortOf } from "./shape.js";
+import { snippetsOf } from "./snippets.js";
 
 /** A JSON Schema, or a part of one. */
 export interface JsonSchema {
@@ -60,7 +61,7 @@ export function jsonSchema(shape: Shape): JsonSchema {
     case "list":
       return {
         type: "array",
-        items: jsonSchema(shape.of),
+        items: { ...jsonSchema(shape.of), ...offered(snippetsOf(shape)) },
         ...(shape.length === undefined ? {} : { minItems: shape.length, maxItems: shape.length }),
       };
     case "named":
@@ -71,6 +72,7 @@ export function jsonSchema(shape: Shape): JsonSchema {
           : { propertyNames: { pattern: shape.keys === "dotted" ? dottedPattern : namePattern } }),
         ...(shape.later ? { properties: mapValues(shape.later, refused) } : {}),
         additionalProperties: jsonSchema(shape.each),
+        ...offered(snippetsOf(shape)),
       };
     case "record":
       return {
@@ -88,6 +90,8 @@ export function jsonSchema(shape: Shape): JsonSchema {
       return eitherSchema(shape.of);
   }
 }
+
+const offered = (snippets: readonly Json[]): JsonSchema => (snippets.length > 0 ? { defaultSnippets: snippets } : {});
 
 const branches = ["if", "then", "else"];
 
@@ -123,14 +127,16 @@ function member(key: KeyShape): JsonSchema {
     return { description: `${says}: ${fix}.`, not: {}, errorMessage: `${says}.` };
   }
   const example = key.example === undefined ? undefined : (parse(key.example) as Json);
+  const schema = jsonSchema(key.shape);
+  const own = Array.isArray(schema.defaultSnippets) ? (schema.defaultSnippets as readonly Json[]) : [];
   return {
     description: key.says,
     markdownDescription: markdown(key),
-    ...jsonSchema(key.shape),
+    ...schema,
     ...(key.default === undefined ? {} : { default: parse(key.default) as Json }),
     ...(example === undefined
       ? {}
-      : { examples: [example], defaultSnippets: [{ label: key.example ?? "", body: example }] }),
+      : { examples: [example], ...offered([...own, { label: key.example ?? "", body: example }]) }),
   };
 }
 

@@ -61,6 +61,8 @@ export interface KeyShape {
   readonly says: string;
   readonly required?: boolean;
   readonly example?: string;
+  /** What an editor puts at this key of a new entry; without it, the example where the key must be there. */
+  readonly snippet?: string;
   readonly default?: string;
   /** Part of the language, refused by this version with its place. */
   readonly later?: boolean;

@@ -86,3 +86,38 @@ function keysOf(shape: Shape, path: string): [string, KeyShape][] {
 test("a schema is plain JSON", () => {
   expect(JSON.parse(JSON.stringify(schemas.network)) as Json).toEqual(schemas.network);
 });
+
+describe.each(documentKinds)("what an editor offers in a %s", (kind) => {
+  test("the schema itself is right by the rules of JSON Schema 2020-12", () => {
+    expect(ajv.validateSchema(schemas[kind]) === true ? [] : ajv.errors).toEqual([]);
+  });
+
+  test("every snippet fits where it is offered", () => {
+    for (const part of partsOf(schemas[kind])) {
+      if (!Array.isArray(part.defaultSnippets)) continue;
+      const validate = validator(part);
+      for (const { label, body } of part.defaultSnippets as readonly { label: string; body: Json }[]) {
+        const typed = JSON.parse(JSON.stringify(body).replace(/\$\{\d+:([^}]*)\}/g, "$1")) as Json;
+        expect(validate(typed) ? [] : validate.errors, `${label}: ${JSON.stringify(typed)}`).toEqual([]);
+      }
+    }
+  });
+});
+
+test("every kind of compartment is offered, with what it needs", () => {
+  const offered = [...partsOf(schemas.network)].flatMap((part) =>
+    Array.isArray(part.defaultSnippets)
+      ? (part.defaultSnippets as readonly { label: string }[]).map((s) => s.label)
+      : [],
+  );
+  for (const kind in kinds) expect(offered).toContain(`new ${kind}`);
+});
+
+/** A schema and every schema in it. */
+function* partsOf(schema: Json): Generator<JsonSchema> {
+  if (schema === null || typeof schema !== "object") return;
+  if (!Array.isArray(schema)) yield schema as JsonSchema;
+  for (const [keyword, part] of Object.entries(schema)) {
+    if (!["defaultSnippets", "examples", "default", "enum"].includes(keyword)) yield* partsOf(part);
+  }
+}

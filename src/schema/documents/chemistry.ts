@@ -52,6 +52,7 @@ const reaction: Shape = record(
       shape: text,
       says: "The reaction, with whole stoichiometric numbers: `A + 2 B -> P`, or `<->` where it goes both ways (the rate is then that of forward less back).",
       example: "A + B -> P",
+      snippet: "A + B -> P",
     },
     makes: {
       shape: named(quantity("ratio")),

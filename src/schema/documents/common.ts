@@ -50,6 +50,7 @@ export const column = (what: string, extra: Record<string, KeyShape> = {}): Shap
       shape: text,
       says: `The column that holds ${what}: its header as it stands in the file, or its position from 1.`,
       required: true,
+      example: "Time",
     },
     unit: {
       shape: text,

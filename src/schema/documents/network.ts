@@ -16,14 +16,15 @@ const laterKeys: Record<string, string> = {
 };
 
 const to: KeyShape = {
-  says: "Where the outflow goes: one name takes all of it; a map splits it by shares of the outflow (`30 %`), fixed flows (`4 L/min`) and at most one `rest`.",
+  says: "Where the outflow goes: one name takes all of it; a map splits it by shares of the outflow (`30 %`), fixed flows (`4 L/min`) and at most one `rest`. Without `rest` shares add to 100 %; with a fixed flow there must be a `rest`. A stream to a place upstream is a recycle, one that skips ahead a bypass.",
   required: true,
   example: "{loop: 4 L/min, product: rest}",
+  snippet: "product",
   shape: either(name, named(quantity("ratio", "flow"), "dotted")),
 };
 
 const exchange: KeyShape = {
-  says: "Partners and the flow exchanged with each, equal both ways. Written on one side only.",
+  says: "Other single stirred tanks and the flow exchanged with each, equal both ways, so that volumes stay. Written on one side only.",
   example: "{corner: 1.5 L/min}",
   shape: named(quantity("flow"), "dotted"),
 };
@@ -60,13 +61,18 @@ export function compartmentShape(kinds: Readonly<Record<string, KindKeys>>): Sha
 }
 
 const constants: KeyShape = {
-  says: "Facts that no fit moves: a value, or a map of a value and what it is about.",
+  says: "Facts that no fit moves: a value, or a map of a value and what it is about. Values may use one another in any order.",
   example: "{total: 1000 L ± 1 %}",
   shape: named(
     either(
       quantity(),
       record({
-        value: { shape: quantity(), says: "The value, with its unit.", required: true, example: "1000 L ± 1 %" },
+        value: {
+          shape: quantity(),
+          says: "The value, with its unit; a `±` is carried into every interval.",
+          required: true,
+          example: "1000 L ± 1 %",
+        },
         about: { shape: text, says: "What it means, and where it comes from." },
       }),
     ),
@@ -74,7 +80,7 @@ const constants: KeyShape = {
 };
 
 const parameters: KeyShape = {
-  says: "What a fit may move. Everything else uses `value`.",
+  says: "What a fit may move, by name. Everything else uses `value`.",
   example: "{bypass: {value: 10 %, between: [0 %, 60 %]}}",
   shape: named(
     record({
@@ -86,8 +92,9 @@ const parameters: KeyShape = {
       },
       between: {
         shape: list(quantity(), 2),
-        says: "The lowest and the highest value that a fit may try. A fit needs it.",
+        says: "The lowest and the highest value that a fit may try, the lower first.",
         example: "[0 %, 60 %]",
+        snippet: "[0 %, 60 %]",
       },
       spacing: {
         shape: choice("linear", "log"),
@@ -105,13 +112,13 @@ const parameters: KeyShape = {
 };
 
 const feeds: KeyShape = {
-  says: "What flows in, by name: how much, and where to.",
+  says: "What flows in, by name: how much, and where to. The name is also that of the feed in trials and duties.",
   example: "{feed: {flow: 10 L/min, to: bulk}}",
   shape: named(
     record({
       flow: {
         shape: quantity("flow"),
-        says: "The flow of the feed. `feed.flow` names it elsewhere.",
+        says: "The flow of the feed, above zero. Values elsewhere may use it: `feed.flow` is that of the feed named `feed`.",
         required: true,
         example: "10 L/min",
       },
@@ -130,13 +137,18 @@ const checks: KeyShape = {
           shape: name,
           says: "The mean residence time at this outlet; `all` for all outlets together.",
           example: "product",
+          snippet: "product",
         },
         volume: {
           shape: name,
           says: "The volume of this compartment; `all` for the whole vessel, dead volume included.",
           example: "all",
         },
-        flow: { shape: name, says: "The flow through this compartment, feed or outlet.", example: "bulk" },
+        flow: {
+          shape: name,
+          says: "The flow through this compartment, feed or outlet, exchange left out.",
+          example: "bulk",
+        },
         equals: {
           shape: quantity("time", "volume", "flow"),
           says: "What it must be.",
@@ -165,16 +177,20 @@ function wholeNetwork(kinds: Readonly<Record<string, KindKeys>>): RecordShape {
     parameters,
     requires: {
       shape: list(text),
-      says: "What physics forbids a fit to try: comparisons that must hold.",
+      says: "What physics forbids a fit to try: comparisons (`<`, `<=`, `>`, `>=`) that must hold, at the start values too.",
       example: "[riser + stagnant < total]",
     },
     feeds,
     compartments: {
       shape: named(compartmentShape(kinds)),
-      says: "The bodies of the vessel by name, with where their outflow goes.",
+      says: "The bodies of the vessel by name, each of a `kind`, with where its outflow goes.",
       example: "{bulk: {kind: stirred, volume: 1000 L, to: product}}",
     },
-    outlets: { shape: list(name), says: "Names where flow leaves the network.", example: "[product]" },
+    outlets: {
+      shape: list(name),
+      says: "Names where flow leaves the network; at least one stream must go to each.",
+      example: "[product]",
+    },
     checks,
     basis: later("Hold-ups in kg and flows in kg/h."),
   });

@@ -18,6 +18,8 @@ import {
 const timeColumn: KeyShape = {
   says: "The column of times: elapsed times with their `unit`, clock times or dates with their `format`. Times as `h:m:s` and ISO dates need neither.",
   example: '{column: Time, format: "h:m:s"}',
+  snippet: "{column: t, unit: min}",
+  needs: "value",
   shape: column("the times", {
     format: {
       shape: text,
@@ -30,6 +32,7 @@ const timeColumn: KeyShape = {
 const valueColumn: KeyShape = {
   says: "The column of readings, with the unit of the detector. Where there is a `calibration`, or `scale: free`, any word may be that unit.",
   example: '{column: "Cond [mS/cm]", unit: mS/cm}',
+  snippet: "{column: c, unit: g/L}",
   shape: column("the readings"),
 };
 
@@ -66,6 +69,8 @@ const cleaning: Record<string, KeyShape> = {
     shape: text,
     says: "The table as it was logged, a CSV file relative to this one. It is never edited: every step of cleaning is declared here.",
     example: "v3-salt.csv",
+    snippet: "log.csv",
+    needs: "time",
   },
   time: timeColumn,
   value: valueColumn,
@@ -162,6 +167,7 @@ const injection: Shape = record(
       shape: quantity(),
       says: "The amount put in: g, mol, Bq, or any word where every reading has `scale: free`. A `±` makes it an unknown of the fit, held by that.",
       example: "50 g ± 1 %",
+      snippet: "50 g",
     },
     step: {
       says: "The concentration that enters from `start` on, or the dosing rate (`3 g/min`). With `from` and `to` the vessel is in balance with `from` before: a wash-out.",
@@ -226,6 +232,7 @@ export const trialShape = record({
     shape: list(reading),
     says: "Every probe or set of samples, each with its table. Without a `file` it is a draft: nothing can be fitted to it.",
     required: true,
+    example: "[{at: product, file: v3-salt.csv, time: {column: t, unit: min}, value: {column: c, unit: g/L}}]",
   },
   tracer: later("Decay, loss or retention of the tracer."),
   contents: later("Tracer inside at the start."),
