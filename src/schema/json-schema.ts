@@ -1,12 +1,9 @@
 import { parse } from "yaml";
+import type { Json, JsonSchema } from "./json.js";
 import { type DocumentKind, documentKinds, type KeyShape, type Shape, sortOf } from "./shape.js";
 import { snippetsOf } from "./snippets.js";
 
-/** A JSON Schema, or a part of one. */
-export interface JsonSchema {
-  [keyword: string]: Json;
-}
-export type Json = string | number | boolean | null | readonly Json[] | { readonly [key: string]: Json };
+export type { Json, JsonSchema } from "./json.js";
 
 /** Keywords that editors use and a validator must be told of. */
 export const editorKeywords = ["markdownDescription", "markdownEnumDescriptions", "defaultSnippets", "errorMessage"];

@@ -1,5 +1,5 @@
 import { parse } from "yaml";
-import type { Json } from "./json-schema.js";
+import type { Json } from "./json.js";
 import type { KeyShape, Shape } from "./shape.js";
 
 /** What an editor offers to put at a place: a label, a sentence, and the lines themselves with `${1:…}` where one goes on typing. */
