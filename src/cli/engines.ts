@@ -1,12 +1,18 @@
+import type { Plant } from "../compile/plant.js";
 import { exact } from "../simulate/exact.js";
-import type { TracerEngine } from "../simulate/linear-system.js";
+import { laplace } from "../simulate/laplace.js";
 import { ode } from "../simulate/ode.js";
+import { type AnyEngine, engineFor } from "../simulate/trace.js";
+import type { SimulateOptions } from "./simulate-options.js";
 
-/** The engine by its name; `auto` is the exact one, which every network of this version allows. */
-export const engineNamed = (name: string): TracerEngine => (name === "ode" ? ode : exact);
+/** The engine by its name; `auto` is the one that suits the plant. */
+export function engineNamed(name: SimulateOptions["engine"], plant: Plant): AnyEngine {
+  const named = { auto: undefined, exact, ode, laplace }[name];
+  return named ?? engineFor(plant);
+}
 
-/** Both engines of this version, to check one by the other. */
-export const engines: readonly [TracerEngine, TracerEngine] = [exact, ode];
+/** An independent engine to check another by. */
+export const engineBeside = (engine: AnyEngine): AnyEngine => (engine === exact ? ode : exact);
 
 /** Largest difference between two sets of curves, as a fraction of the largest value of the first. */
 export function largestDifference(a: readonly Float64Array[], b: readonly Float64Array[]): number {

@@ -97,7 +97,7 @@ function addSimulate(root: Command, { perform, inputs, io }: Stage): void {
     .addOption(
       new Option("--engine <name>", "how to integrate").choices(["auto", "exact", "ode", "laplace"]).default("auto"),
     )
-    .option("--verify", "run both engines and print the largest difference")
+    .option("--verify", "run a second engine and print the largest difference")
     .option("-o, --output <file>", "write the curves to F.csv");
   later(simulate, "--transient").action((network: string, options, self: Command) =>
     perform("simulate", async () => {

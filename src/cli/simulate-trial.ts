@@ -13,7 +13,7 @@ import { formatNumber, formatQuantity } from "../units/format.js";
 import { inUnit, type Unit } from "../units/unit.js";
 import type { Context } from "./context.js";
 import { curvesCsv } from "./csv.js";
-import { engineNamed, engines, largestDifference } from "./engines.js";
+import { engineBeside, engineNamed, largestDifference } from "./engines.js";
 import { pure, quantity, series } from "./json/quantity.js";
 import { balanceJson, momentsJson } from "./json/tracer.js";
 import { type Outcome, UsageError } from "./outcome.js";
@@ -37,11 +37,10 @@ export function simulateTrial(network: Network, options: SimulateOptions, { inpu
   const origin = Math.min(...trial.injections.map((i) => i.start));
   const clock = clockFrom(options, network.units.time, () => lastTime(plant, trial, origin));
   const wanted = trial.readings.map(() => ({ time: clock.si.map((t) => t + origin) }));
-  const engine = engineNamed(options.engine);
+  const engine = engineNamed(options.engine, plant);
   const curves = trialResponse(plant, trial, wanted, engine);
-  const other = options.verify
-    ? trialResponse(plant, trial, wanted, engines.find((e) => e !== engine) ?? engines[1])
-    : undefined;
+  const beside = engineBeside(engine);
+  const other = options.verify ? trialResponse(plant, trial, wanted, beside) : undefined;
   const difference = other && largestDifference(curves, other);
   const until = origin + clock.si[clock.si.length - 1];
   const balance = trialBalance(plant, trial, until, engine);
@@ -95,7 +94,7 @@ export function simulateTrial(network: Network, options: SimulateOptions, { inpu
       balance: balance ? balanceJson(balance.balance, balance.unit) : null,
       ...(difference === undefined
         ? {}
-        : { verify: { engines: engines.map((e) => e.name), largestDifference: pure(difference).value } }),
+        : { verify: { engines: [engine.name, beside.name], largestDifference: pure(difference).value } }),
       ...(options.output === undefined ? {} : { written: options.output }),
     },
     notes: failed ? ["not converged: the integrator gave up; points without a value are left empty"] : [],

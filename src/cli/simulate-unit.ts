@@ -4,7 +4,7 @@ import { formatNumber, formatQuantity } from "../units/format.js";
 import { inUnit } from "../units/unit.js";
 import type { Context } from "./context.js";
 import { curvesCsv } from "./csv.js";
-import { engineNamed, engines, largestDifference } from "./engines.js";
+import { engineBeside, engineNamed, largestDifference } from "./engines.js";
 import { pure } from "./json/quantity.js";
 import { tracerJson } from "./json/tracer.js";
 import type { Outcome } from "./outcome.js";
@@ -25,10 +25,10 @@ export function simulateUnit(network: Network, options: SimulateOptions, { io }:
   for (const name of options.at ?? []) requirePlace(name, plant.exit, "--at");
   const clock = clockFrom(options, network.units.time, () => settlingTime(plant, into));
   const at = options.at ?? [];
-  const run = (engine: ReturnType<typeof engineNamed>) =>
-    tracerResponse(plant, { at: into, form }, clock.si, { engine, at });
-  const result = run(engineNamed(options.engine));
-  const other = options.verify ? run(engines.find((e) => e.name !== result.engine) ?? engines[1]) : undefined;
+  const engine = engineNamed(options.engine, plant);
+  const run = (by: typeof engine) => tracerResponse(plant, { at: into, form }, clock.si, { engine: by, at });
+  const result = run(engine);
+  const other = options.verify ? run(engineBeside(engine)) : undefined;
   const difference = other && largestDifference(...curvesOf(result, other));
   const valueUnit = form === "pulse" ? perUnit(clock.unit) : pureNumber;
   if (options.output !== undefined) {
@@ -54,17 +54,17 @@ export function simulateUnit(network: Network, options: SimulateOptions, { io }:
       spikesText(result.readings, clock.unit),
       balanceLine(result.balance, balanceUnit(form, clock.unit)),
       peaks(result.readings, clock.shown, valueUnit.factor, valueUnit.name, clock.unit.name),
-      difference === undefined
+      difference === undefined || !other
         ? ""
-        : `  engines: ${engines.map((e) => e.name).join(" and ")} differ by at most ${formatNumber(difference, 2)} of the peak`,
+        : `  engines: ${result.engine} and ${other.engine} differ by at most ${formatNumber(difference, 2)} of the peak`,
       options.output === undefined ? "" : `  curves: ${options.output}`,
     ),
     json: {
       ok: !result.stopped,
       ...tracerJson(result, clock, form),
-      ...(difference === undefined
+      ...(difference === undefined || !other
         ? {}
-        : { verify: { engines: engines.map((e) => e.name), largestDifference: pure(difference).value } }),
+        : { verify: { engines: [result.engine, other.engine], largestDifference: pure(difference).value } }),
       ...(result.stopped ? { stopped: result.stopped } : {}),
       ...(options.output === undefined ? {} : { written: options.output }),
     },

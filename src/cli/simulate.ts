@@ -9,7 +9,6 @@ export async function simulate(file: string, options: SimulateOptions, context: 
   if (asked.length !== 1) {
     throw new UsageError("say what to simulate: one of --pulse FEED, --step FEED, --trial FILE and --duty FILE");
   }
-  if (options.engine === "laplace") throw new UsageError("'--engine laplace' is not in this version of backmix");
   if (options.output !== undefined && !/\.csv$/i.test(options.output)) {
     throw new UsageError(`-o writes the curves as CSV: name a file that ends in .csv, not '${options.output}'`);
   }

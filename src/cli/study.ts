@@ -5,6 +5,7 @@ import { beside } from "../read/paths.js";
 import { writeSummary } from "../report/markdown.js";
 import { writeReport } from "../report/report.js";
 import { reportOf } from "../report/study/build.js";
+import { untraceable } from "../simulate/trace.js";
 import { runStudy } from "../study/run.js";
 import type { Context } from "./context.js";
 import type { ExitStatus, Io } from "./io.js";
@@ -24,7 +25,8 @@ export async function study(file: string, options: StudyOptions, { inputs, io }:
   const document = inputs.document(file, parseStudy);
   for (const { network } of document.rivals) {
     const { plant } = compile(network);
-    if (plant) inputs.accept(uncarried(plant));
+    if (plant)
+      inputs.accept([...untraceable(plant), ...(document.duties.length > 0 ? uncarried(plant, "reaction") : [])]);
   }
   const folder = options.output ?? (document.out === undefined ? undefined : beside(file, document.out));
   // Before the work: a folder that cannot be written is no surprise to keep for its end.

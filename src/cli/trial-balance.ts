@@ -1,9 +1,8 @@
 import type { Plant } from "../compile/plant.js";
 import type { Injection, Trial } from "../model/trial.js";
-import type { TracerEngine } from "../simulate/linear-system.js";
-import { type Balance, balanceAt } from "../simulate/respond.js";
+import type { Balance } from "../simulate/respond.js";
+import { type AnyEngine, trace } from "../simulate/trace.js";
 import { driveOf } from "../simulate/trial.js";
-import { unroll } from "../simulate/unroll.js";
 import { dimensionName, dimensions, times } from "../units/dimension.js";
 import type { Unit } from "../units/unit.js";
 
@@ -16,7 +15,7 @@ export function trialBalance(
   plant: Plant,
   trial: Trial,
   until: number,
-  engine: TracerEngine,
+  engine: AnyEngine,
 ): { balance: Balance; unit: Unit } | undefined {
   const unit = amountUnit(plant, trial.injections[0]);
   if (!unit) return undefined;
@@ -25,7 +24,7 @@ export function trialBalance(
     const entry = plant.entry.get(injection.at);
     const span = until - injection.start;
     if (entry === undefined || !(span > 0)) continue;
-    const part = balanceAt(plant, unroll(plant, entry, span), driveOf(plant, injection).drive, span, engine);
+    const part = trace(plant, entry, span, engine).balance(driveOf(plant, injection).drive, span);
     sum.injected += part.injected;
     sum.left += part.left;
     sum.inside += part.inside;

@@ -1,6 +1,6 @@
 import type { Plant } from "../compile/plant.js";
 import type { Reading, Trial } from "../model/trial.js";
-import { unroll } from "../simulate/unroll.js";
+import { trace } from "../simulate/trace.js";
 
 /** Undispersed tracer at a probe: when (s on the trial's clock) and how much (concentration times s). SI. */
 export interface TrialSpike {
@@ -24,8 +24,8 @@ export function trialSpikes(plant: Plant, trial: Trial, reading: Reading, until:
     if (form.is !== "pulse" || lasting > 0 || entry === undefined) return [];
     const amount = form.amount.of(plant.env);
     const least = (smallest * amount) / plant.nodes[node].inflow;
-    return unroll(plant, entry, until - start)
-      .outflow(node)
+    return trace(plant, entry, until - start)
+      .passagesAt(node)
       .map((p) => ({ time: start + p.delay + line, area: p.direct * amount }))
       .filter((s) => s.area > least && s.time <= until);
   });

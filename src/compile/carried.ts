@@ -3,16 +3,17 @@ import { RefusedError } from "../problems/refused.js";
 import { problem } from "../problems/report.js";
 import { Part, type Plant } from "./plant.js";
 
-/** What is to be done with a plant: followed in time (and fitted), or its steady state with reaction. */
-export type Work = "tracer" | "reaction";
+/** What is to be done with a plant: followed by integrating, by inverting transfer functions, or its steady state with reaction. */
+export type Work = "tracer" | "laplace" | "reaction";
 
 /** What this version does in about half a minute: nodes in all, and nodes that feed one another. */
 const limits: Readonly<Record<Work, { says: string; nodes: number; circle: number }>> = {
   tracer: { says: "compute tracer curves of", nodes: 20_000, circle: 20_000 },
+  laplace: { says: "compute tracer curves by transfer functions of", nodes: 5_000, circle: 1_000 },
   reaction: { says: "solve reaction in", nodes: 100_000, circle: 1_000 },
 };
 
-/** Why this version cannot do a work: bodies that only their transfer function describes, too many nodes. */
+/** Why this version cannot do a work: bodies that only their transfer function describes (all but laplace), too many nodes. */
 export function uncarried(plant: Plant, work: Work = "tracer"): Problem[] {
   const { size, part } = plant.columns;
   const { says, nodes, circle } = limits[work];
@@ -22,15 +23,15 @@ export function uncarried(plant: Plant, work: Work = "tracer"): Problem[] {
   ];
   if (size > nodes) return tooMany(size, nodes, false);
   if (largest > circle) return tooMany(largest, circle, true);
-  if (!part.includes(Part.Block)) return [];
+  if (work === "laplace" || !part.includes(Part.Block)) return [];
   return plant.nodes.flatMap(({ part, block, name }) => {
     if (part !== Part.Block || !block) return [];
     const { at } = plant.network.compartments.find((body) => body.name === name) ?? plant.network;
-    return [problem("not-carried", at, { name, is: block.is })];
+    return [problem("not-carried", at, { name, is: block.is, reacts: work === "reaction" })];
   });
 }
 
-/** @throws RefusedError where a plant is beyond the time-domain engines, or the reaction, of this version */
+/** @throws RefusedError where a plant is beyond what this version does */
 export function requireCarried(plant: Plant, work: Work = "tracer"): void {
   const problems = uncarried(plant, work);
   if (problems.length > 0) throw new RefusedError(problems);

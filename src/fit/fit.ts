@@ -1,11 +1,11 @@
 import { checkTrial } from "../check/trial.js";
-import { uncarried } from "../compile/carried.js";
 import { compile } from "../compile/compile.js";
 import { hasSignal } from "../data/signal.js";
 import type { Network } from "../model/network.js";
 import type { Trial } from "../model/trial.js";
 import type { Problem } from "../problems/problem.js";
 import { collector, hasErrors, type Report } from "../problems/report.js";
+import { untraceable } from "../simulate/trace.js";
 import { formatQuantity } from "../units/format.js";
 import { criteriaOf } from "./criteria.js";
 import { estimatesOf } from "./estimates.js";
@@ -49,7 +49,7 @@ export interface FitOutcome {
  */
 export function fit(network: Network, trials: readonly Trial[], options: FitOptions = {}): FitOutcome {
   const { plant } = compile(network);
-  const refused = plant ? uncarried(plant) : [];
+  const refused = plant ? untraceable(plant) : [];
   if (refused.length > 0) return { fit: undefined, problems: refused };
   return fitWith(networkModel(network), network, trials, options);
 }

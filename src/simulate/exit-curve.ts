@@ -1,9 +1,7 @@
 import type { Plant } from "../compile/plant.js";
-import { exact } from "./exact.js";
 import { instant } from "./linear-system.js";
-import { see } from "./respond.js";
+import { trace } from "./trace.js";
 import { settlingTime } from "./tracer.js";
-import { unroll } from "./unroll.js";
 
 /** How old what leaves is, over all that is fed: at one outlet, or at all together. Times in s, densities in 1/s. */
 export interface ExitCurve {
@@ -29,13 +27,15 @@ export function exitCurve(plant: Plant, outlet?: string): ExitCurve {
   const flow = plant.feeds.reduce((sum, f) => sum + f.flow, 0);
   const end = Math.max(...plant.feeds.map((f) => settlingTime(plant, f.name, 1 - 1e-9, 60)));
   const parts = plant.feeds.flatMap((f) => {
-    const unrolled = unroll(plant, f.node, end);
-    return outlets.map((o) => ({ unrolled, passages: unrolled.outflow(o.node), weight: (f.flow / flow) * o.flow }));
+    const tracing = trace(plant, f.node, end);
+    return outlets.map(({ node, flow: leaving }) => {
+      return { tracing, node, passages: tracing.passagesAt(node), weight: (f.flow / flow) * leaving };
+    });
   });
   const sum = (times: Float64Array, what: "value" | "integral"): Float64Array => {
     const total = new Float64Array(times.length);
-    for (const { unrolled, passages, weight } of parts) {
-      const [seen] = see(unrolled, instant(1), [{ passages, times }], exact).seen;
+    for (const { tracing, node, weight } of parts) {
+      const [seen] = tracing.see(instant(1), [{ node, times }]).seen;
       for (let i = 0; i < total.length; i++) total[i] += weight * seen[what][i];
     }
     return total;

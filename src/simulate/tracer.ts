@@ -1,12 +1,12 @@
 import type { Plant } from "../compile/plant.js";
-import { exact } from "./exact.js";
-import { constantRate, instant, type Passage, type TracerEngine } from "./linear-system.js";
+import { constantRate, instant } from "./linear-system.js";
 import { moments, type NodeMoments } from "./moments.js";
-import { type Balance, balanceAt, see } from "./respond.js";
-import { type Unrolled, unroll } from "./unroll.js";
+import type { Balance } from "./respond.js";
+import { type AnyEngine, engineFor, trace } from "./trace.js";
 
 export interface TracerOptions {
-  readonly engine?: TracerEngine;
+  /** Default: the exact one where it carries the plant, else laplace. */
+  readonly engine?: AnyEngine;
   /** Inner places to look at, by name, besides the outlets. */
   readonly at?: readonly string[];
 }
@@ -57,25 +57,23 @@ export function tracerResponse(
   times: ArrayLike<number>,
   options: TracerOptions = {},
 ): TracerResult {
-  const engine = options.engine ?? exact;
+  const engine = options.engine ?? engineFor(plant);
   const entry = plant.entry.get(injection.at);
   if (entry === undefined) throw new RangeError(`no place '${injection.at}' in the network`);
   const clock = Float64Array.from(times);
   const until = clock[clock.length - 1] ?? 0;
   const flow = injectionFlow(plant, injection.at);
-  const unrolled = unroll(plant, entry, until);
+  const tracing = trace(plant, entry, until, engine);
   const drive = injection.form === "pulse" ? instant(1) : constantRate(1);
   const places = [...plant.outlets.map((o) => o.name), ...(options.at ?? [])];
-  const passages = places.map((name) => passagesAt(plant, unrolled, name));
-  const { seen, stopped } = see(
-    unrolled,
+  const nodes = places.map((name) => exitOf(plant, name));
+  const { seen, stopped } = tracing.see(
     drive,
-    passages.map((p) => ({ passages: p, times: clock })),
-    engine,
+    nodes.map((node) => ({ node, times: clock })),
   );
   const all = moments(plant, entry);
   const readings = places.map((at, i): TracerReading => {
-    const node = plant.exit.get(at) as number;
+    const node = nodes[i];
     const pulse = injection.form === "pulse";
     const value = seen[i].value.map((c) => c * flow);
     const inflow = plant.nodes[node].inflow;
@@ -83,7 +81,7 @@ export function tracerResponse(
       at,
       value,
       cumulative: pulse ? seen[i].integral.map((c) => c * flow) : value,
-      ...spikesOf(passages[i], flow, pulse),
+      ...spikesOf(tracing.passagesAt(node), flow, pulse),
       moments: all[node],
       area: inflow > 0 ? (all[node].share * flow) / inflow : 0,
     };
@@ -92,17 +90,17 @@ export function tracerResponse(
     engine: engine.name,
     times: clock,
     readings,
-    balance: balanceAt(plant, unrolled, drive, until, engine),
+    balance: tracing.balance(drive, until),
     stopped,
-    truncated: unrolled.truncated,
+    truncated: tracing.truncated,
   };
 }
 
-/** The outflow of a place, by its name in the file. */
-export function passagesAt(plant: Plant, unrolled: Unrolled, name: string): Passage[] {
+/** The node whose outflow a place of the file stands for. */
+export function exitOf(plant: Plant, name: string): number {
   const node = plant.exit.get(name);
   if (node === undefined) throw new RangeError(`no place '${name}' in the network`);
-  return unrolled.outflow(node);
+  return node;
 }
 
 /** Flow that an injection is counted against: of the feed injected into, or of all feeds. m3/s. */
@@ -111,7 +109,11 @@ export function injectionFlow(plant: Plant, at: string): number {
   return feed ? feed.flow : plant.feeds.reduce((sum, f) => sum + f.flow, 0);
 }
 
-function spikesOf(passages: readonly Passage[], flow: number, pulse: boolean) {
+function spikesOf(
+  passages: readonly { readonly delay: number; readonly direct: number }[],
+  flow: number,
+  pulse: boolean,
+) {
   const spikes: { time: number; area: number }[] = [];
   let spikesLeftOut = 0;
   if (pulse) {
@@ -134,10 +136,9 @@ export function settlingTime(plant: Plant, at: string, level = 0.999, mostMeans 
   if (!(most > 0)) return 1;
   const entry = plant.entry.get(at) as number;
   const all = moments(plant, entry);
-  const unrolled = unroll(plant, entry, most);
   const times = Float64Array.from({ length: 800 }, (_, i) => (most * (i + 1)) / 800);
-  const looks = plant.outlets.map((o) => ({ passages: unrolled.outflow(o.node), times }));
-  const { seen } = see(unrolled, instant(1), looks, exact);
+  const looks = plant.outlets.map(({ node }) => ({ node, times }));
+  const { seen } = trace(plant, entry, most).see(instant(1), looks);
   let until = 0;
   plant.outlets.forEach((o, i) => {
     const goal = (level * all[o.node].share) / (o.flow || 1);

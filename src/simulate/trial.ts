@@ -1,10 +1,9 @@
 import type { Plant } from "../compile/plant.js";
 import type { Injection, Trial } from "../model/trial.js";
-import { exact } from "./exact.js";
-import { type Drive, driveAt, instant, type Passage, type TracerEngine } from "./linear-system.js";
+import { type Drive, driveAt, instant } from "./linear-system.js";
 import { moments } from "./moments.js";
-import { type Look, see } from "./respond.js";
-import { unroll } from "./unroll.js";
+import { type AnyEngine, engineFor, trace } from "./trace.js";
+import type { NodeLook } from "./tracing.js";
 
 /**
  * What every probe of a trial would read, as concentration (SI) on the trial's clock: dose, flows and sample line as
@@ -17,27 +16,27 @@ export function trialResponse(
   plant: Plant,
   trial: Trial,
   wanted: readonly { readonly time: Float64Array }[],
-  engine: TracerEngine = exact,
+  engine: AnyEngine = engineFor(plant),
 ): Float64Array[] {
   const sums = wanted.map(({ time }) => new Float64Array(time.length));
   const last = wanted.reduce((m, { time }) => Math.max(m, time[time.length - 1] ?? 0), 0);
   for (const injection of trial.injections) {
     const entry = plant.entry.get(injection.at);
     if (entry === undefined) throw new RangeError(`no place '${injection.at}' in the network`);
-    const unrolled = unroll(plant, entry, last - injection.start);
+    const tracing = trace(plant, entry, last - injection.start, engine);
     const { drive, before } = driveOf(plant, injection);
     const steady = before === 0 ? [] : moments(plant, entry);
-    const looks = trial.readings.map((reading, i): Look => {
+    const looks = trial.readings.map((reading, i): NodeLook => {
       const node = plant.exit.get(reading.at);
       if (node === undefined) throw new RangeError(`no place '${reading.at}' in the network`);
       const delay = reading.line.delay?.of(plant.env) ?? 0;
       const lag = reading.line.lag?.of(plant.env) ?? 0;
-      const passages: readonly Passage[] = unrolled.outflow(node).map((p) => (lag > 0 ? { ...p, lag } : p));
       // A vessel that starts in balance with `from` reads this before anything changes.
       if (before !== 0) sums[i].fill((before * steady[node].share) / plant.nodes[node].inflow);
-      return { passages, times: wanted[i].time.map((t) => t - injection.start - delay), integral: false };
+      const times = wanted[i].time.map((t) => t - injection.start - delay);
+      return { node, times, lag, integral: false };
     });
-    const { seen } = see(unrolled, drive, looks, engine);
+    const { seen } = tracing.see(drive, looks);
     seen.forEach((s, i) => {
       for (let k = 0; k < s.value.length; k++) sums[i][k] += s.value[k];
     });

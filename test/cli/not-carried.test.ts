@@ -14,21 +14,42 @@ const files = {
   ...vessels,
   "dispersed.yaml": network,
   "duty.yaml": "duty: Normal\nformat: 1\nfeeds: {feed: {}}\n",
-  "study.yaml": "study: One\nformat: 1\nrivals: [tank.yaml, dispersed.yaml]\ntrials: [pulse.yaml]\nduties: []\n",
+  "study.yaml":
+    "study: One\nformat: 1\nrivals: [tank.yaml, dispersed.yaml]\ntrials: [pulse.yaml]\nduties: [duty.yaml]\n",
 };
 
 test.each([
-  [["simulate", "dispersed.yaml", "--pulse", "feed"]],
-  [["simulate", "dispersed.yaml", "--trial", "pulse.yaml"]],
+  [["simulate", "dispersed.yaml", "--pulse", "feed", "--engine", "ode"]],
+  [["simulate", "dispersed.yaml", "--trial", "pulse.yaml", "--engine", "exact"]],
+  [["simulate", "dispersed.yaml", "--step", "feed", "--verify"]],
   [["simulate", "dispersed.yaml", "--duty", "duty.yaml"]],
-  [["fit", "dispersed.yaml", "--trial", "pulse.yaml"]],
   [["study", "study.yaml"]],
-])("%j refuses a body that no engine carries, with its place", async (args) => {
+])("%j refuses a body that it does not carry, with its place", async (args) => {
   const { status, err } = await backmix(args, { files });
   expect(err).toContain("dispersed.yaml:6:3 not-carried: 'bulk' is axial dispersion");
   expect(status).toBe(1);
   const { document } = await json(args, { files });
   expect(document).toMatchObject({ ok: false, problems: [{ code: "not-carried", line: 6, column: 3 }] });
+});
+
+test.each([
+  [["simulate", "dispersed.yaml", "--pulse", "feed"]],
+  [["simulate", "dispersed.yaml", "--trial", "pulse.yaml"]],
+  [["simulate", "tank.yaml", "--pulse", "feed", "--engine", "laplace"]],
+])("%j is done by the laplace engine", async (args) => {
+  const { status, document } = await json(args, { files });
+  expect(document).toMatchObject({ ok: true, engine: "laplace" });
+  expect(status).toBe(0);
+});
+
+test("laplace is checked by the exact engine", async () => {
+  const { document } = await json(["simulate", "tank.yaml", "--pulse", "feed", "--engine", "laplace", "--verify"], {
+    files,
+  });
+  expect(document).toMatchObject({ verify: { engines: ["laplace", "exact"] } });
+  const largestDifference = Number(document.verify.largestDifference);
+  expect(largestDifference).toBeGreaterThan(0);
+  expect(largestDifference).toBeLessThan(1e-9);
 });
 
 test("check and draw take it", async () => {

@@ -23,7 +23,6 @@ describe("wrong usage ends with 2, a hint and no stack", () => {
     ["half a point", ["simulate", "tank.yaml", "--pulse", "feed", "--points", "2.5"]],
     ["a billion points", ["simulate", "tank.yaml", "--pulse", "feed", "--points", "1000000000"]],
     ["one point", ["simulate", "tank.yaml", "--pulse", "feed", "--points", "1"]],
-    ["an engine of later", ["simulate", "tank.yaml", "--pulse", "feed", "--engine", "laplace"]],
     ["an unknown engine", ["simulate", "tank.yaml", "--pulse", "feed", "--engine", "euler"]],
     ["start-up of later", ["simulate", "tank.yaml", "--duty", "duty.yaml", "--transient"]],
     ["a duty with times", ["simulate", "tank.yaml", "--duty", "duty.yaml", "--until", "6 h"]],

@@ -2,6 +2,8 @@ import { describe, expect, test } from "vitest";
 import { uncarried } from "../../src/compile/carried.js";
 import { RefusedError } from "../../src/problems/refused.js";
 import { steadyState } from "../../src/reaction/steady.js";
+import { exact } from "../../src/simulate/exact.js";
+import { ode } from "../../src/simulate/ode.js";
 import { tracerResponse } from "../../src/simulate/tracer.js";
 import { plantOf } from "../simulate/plants.js";
 import { vessel } from "../transfer/vessel.js";
@@ -16,12 +18,17 @@ const blocks = {
 describe.each(Object.entries(blocks))("%s", (is, keys) => {
   const plant = plantOf(vessel(`  a: {kind: ${keys}, to: out}`));
 
-  test("is refused by the engines with its name and place", () => {
+  test("is refused by engines that integrate and by reaction, with its name and place; laplace carries it", () => {
     const [problem] = uncarried(plant);
     expect(problem).toMatchObject({ code: "not-carried", severity: "error" });
-    expect(problem.message).toBe(`'a' is ${is}, which this version cannot yet follow in time, fit or react`);
+    expect(problem.message).toBe(`'a' is ${is}, which only the laplace engine can follow in time`);
     expect(problem.at.source.text.slice(problem.at.from)).toMatch(/^a: /);
-    expect(() => tracerResponse(plant, { at: "in", form: "pulse" }, [0, 60])).toThrow(RefusedError);
+    for (const engine of [exact, ode]) {
+      expect(() => tracerResponse(plant, { at: "in", form: "pulse" }, [0, 60], { engine })).toThrow(RefusedError);
+    }
+    expect(uncarried(plant, "laplace")).toEqual([]);
+    expect(tracerResponse(plant, { at: "in", form: "pulse" }, [0, 60]).engine).toBe("laplace");
+    expect(uncarried(plant, "reaction")[0].message).toBe(`'a' is ${is}, which this version cannot yet react`);
     const duty = { feeds: new Map(), flows: new Map(), settings: new Map(), report: [] };
     expect(() => steadyState(plant, undefined, duty as unknown as Parameters<typeof steadyState>[2])).toThrow(
       RefusedError,

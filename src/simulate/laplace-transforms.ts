@@ -1,0 +1,133 @@
+import { Part, type Plant } from "../compile/plant.js";
+import { type Complex, complex } from "../numerics/complex.js";
+import { adjacency } from "../numerics/graph.js";
+import type { Transforms } from "../numerics/inversion.js";
+import { NodeEquations } from "../transfer/node-equations.js";
+import type { Passing } from "./laplace-gain.js";
+import type { Copy, Passes } from "./laplace-passes.js";
+
+/** What to read in one copy (the last number is the rest): what leaves a node, or all that the vessel holds. */
+export interface Channel {
+  readonly copy: number;
+  /** Undefined: the amount held, inside and on the way. */
+  readonly node: number | undefined;
+  /** s: seen through a first-order detector, undispersed part and all. */
+  readonly lag: number;
+}
+
+/** The transforms of parts, undelayed by the delay of their copy. */
+export function transformsOf(
+  plant: Plant,
+  passing: readonly Passing[],
+  { copies, rest, slots }: Passes,
+  parts: readonly Channel[],
+): Transforms {
+  const { nodes, from } = plant;
+  const n = nodes.length;
+  const into = adjacency(n, plant.to);
+  const cut = new NodeEquations(plant);
+  const whole = rest.length > 0 ? new NodeEquations(plant) : undefined;
+  const [slotRe, slotIm] = [new Float64Array(slots), new Float64Array(slots)];
+  const [cRe, cIm] = [new Float64Array(n), new Float64Array(n)];
+  const [spreadRe, spreadIm] = [new Float64Array(n), new Float64Array(n)];
+  const wantedOf = copies.map((): number[] => []).concat([[]]);
+  parts.forEach(({ copy }, p) => {
+    wantedOf[copy].push(p);
+  });
+  const last = wantedOf.findLastIndex((w) => w.length > 0);
+  /** Mean of what links bring to a node. */
+  const entering = (i: number): Complex => {
+    let re = 0;
+    let im = 0;
+    for (let e = into.start[i]; e < into.start[i + 1]; e++) {
+      const k = into.edges[e];
+      re += plant.flow[k] * cRe[from[k]];
+      im += plant.flow[k] * cIm[from[k]];
+    }
+    return { re: re / nodes[i].inflow, im: im / nodes[i].inflow };
+  };
+  /** Amount held by the nodes between `entering` and outflow; cells by what is in them. */
+  const held = (s: Complex, copy: Copy | undefined): Complex => {
+    let cells: Complex = complex.of(0);
+    let between: Complex = complex.of(0);
+    for (let i = 0; i < n; i++) {
+      const { part, volume, inflow } = nodes[i];
+      if (!(inflow > 0) || part === Part.Joint) continue;
+      const out = { re: cRe[i] + (copy?.direct[i] ?? 0), im: cIm[i] };
+      if (part === Part.Cell) cells = complex.add(cells, complex.scale(out, volume));
+      else {
+        const mean = entering(i);
+        const stays = { re: mean.re + (copy?.enteringDirect[i] ?? 0) - out.re, im: mean.im - out.im };
+        between = complex.add(between, complex.scale(stays, inflow));
+      }
+    }
+    return complex.add(cells, complex.divide(between, s));
+  };
+  const read = (s: Complex, copy: number, re: Float64Array, im: Float64Array): void => {
+    for (const p of wantedOf[copy]) {
+      const { node, lag } = parts[p];
+      let value: Complex;
+      if (node === undefined) value = held(s, copies[copy]);
+      else if (lag > 0) {
+        const seen = { re: cRe[node] + (copies[copy]?.direct[node] ?? 0), im: cIm[node] };
+        value = complex.divide(seen, { re: 1 + lag * s.re, im: lag * s.im });
+      } else value = { re: cRe[node], im: cIm[node] };
+      re[p] = value.re;
+      im[p] = value.im;
+    }
+  };
+  return {
+    count: parts.length,
+    at(sRe, sIm, re, im) {
+      const s = { re: sRe, im: sIm };
+      for (let i = 0; i < n; i++) {
+        const g = passing[i].spread(s);
+        spreadRe[i] = g.re;
+        spreadIm[i] = g.im;
+        cut.gainRe[i] = passing[i].delay > 0 ? 0 : g.re + passing[i].direct;
+        cut.gainIm[i] = passing[i].delay > 0 ? 0 : g.im;
+      }
+      cut.factor();
+      slotRe.fill(0);
+      slotIm.fill(0);
+      for (let c = 0; c <= Math.min(last, copies.length - 1) || (whole && c < copies.length); c++) {
+        const { seeds, exits, enteringDirect } = copies[c];
+        for (let i = 0; i < n; i++) {
+          const here = passing[i].delay > 0 ? 0 : enteringDirect[i];
+          cRe[i] = spreadRe[i] * here;
+          cIm[i] = spreadIm[i] * here;
+        }
+        for (const { node, slot } of seeds) {
+          cRe[node] += slotRe[slot];
+          cIm[node] += slotIm[slot];
+        }
+        cut.solve(cRe, cIm);
+        read(s, c, re, im);
+        for (const { node, slot } of exits) {
+          if (slot === undefined) continue;
+          const mean = entering(node);
+          const { direct } = passing[node];
+          const [gRe, gIm] = [spreadRe[node], spreadIm[node]];
+          slotRe[slot] += (gRe + direct) * mean.re - gIm * mean.im + gRe * enteringDirect[node];
+          slotIm[slot] += (gRe + direct) * mean.im + gIm * mean.re + gIm * enteringDirect[node];
+        }
+      }
+      if (!whole) return;
+      for (let i = 0; i < n; i++) {
+        const g = passing[i].whole(s);
+        whole.gainRe[i] = g.re;
+        whole.gainIm[i] = g.im;
+      }
+      whole.factor();
+      cRe.fill(0);
+      cIm.fill(0);
+      for (const { node, slot, delay } of rest) {
+        const turn = complex.exp(complex.scale(s, rest[0].delay - delay));
+        cRe[node] += slotRe[slot] * turn.re - slotIm[slot] * turn.im;
+        cIm[node] += slotRe[slot] * turn.im + slotIm[slot] * turn.re;
+      }
+      whole.solve(cRe, cIm);
+      read(s, copies.length, re, im);
+    },
+  };
+}
