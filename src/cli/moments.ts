@@ -1,10 +1,13 @@
 import { checkTrial } from "../check/trial.js";
+import { compile } from "../compile/compile.js";
 import { readMoments } from "../data/moments.js";
+import { settingsOfDay } from "../fit/settings.js";
 import type { Network } from "../model/network.js";
 import type { Trial } from "../model/trial.js";
 import { parseNetwork } from "../parse/network.js";
 import { parseTrial } from "../parse/trial.js";
 import { collector } from "../problems/report.js";
+import { placesOf } from "../study/trial-facts.js";
 import type { Context } from "./context.js";
 import type { Inputs } from "./inputs.js";
 import { momentsResultJson } from "./json/moments.js";
@@ -21,6 +24,7 @@ export interface MomentsOptions {
 export function moments(file: string, { vessel }: MomentsOptions, { inputs }: Context): Outcome {
   const trial = inputs.document(file, parseTrial);
   const network = vesselFor(trial, vessel, inputs);
+  const { plant } = network ? compile(network, settingsOfDay(network, trial, {})) : { plant: undefined };
   const result = readMoments(
     trial,
     network
@@ -28,6 +32,7 @@ export function moments(file: string, { vessel }: MomentsOptions, { inputs }: Co
           flowAt: (at) => knownOnDay(network, trial, (plant) => flowThrough(plant, at)),
           volume: knownOnDay(network, trial, (plant) => plant.volume.total),
           throughflow: knownOnDay(network, trial, (plant) => vesselOf(plant).feed),
+          ...(plant ? placesOf(plant) : {}),
           ...(trial.clock ? { timeUnit: network.units.time } : {}),
         }
       : {},

@@ -1,4 +1,7 @@
 import { extent } from "./extent.js";
+import { roughness } from "./noise.js";
+import { hiddenLevel, type SlowTail, slowTailOf, type TailedRecord } from "./slow-tail.js";
+import { decayMoments, type RawFour } from "./tail.js";
 
 /** What lies under the signal: level + slope * (t - middle), with standard errors (independent at `middle`). SI. */
 export interface Baseline {
@@ -7,18 +10,72 @@ export interface Baseline {
   readonly middle: number;
   readonly levelError: number;
   readonly slopeError: number;
-  readonly from: "before the injection" | "after the tail" | "before and after";
+  readonly from: "before the injection" | "after the tail" | "before and after" | "under the tail";
   /** True where a drift was asked for and only a constant could be told. */
   readonly driftUnknown: boolean;
+  /** The tail that it was fitted together with. */
+  readonly tail?: SlowTail;
+  /** The tail that it may have taken away, where it was drawn through the end of the record. */
+  readonly hidden?: Hidden;
+}
+
+/** A decay with the time constant of the whole record that a baseline would hide. */
+export interface Hidden {
+  /** At the end, one standard error. */
+  readonly level: number;
+  /** What was drawn through the end: with the decay it would have taken so much away before it. */
+  readonly as: "constant" | "drift";
+}
+
+/** Raw moments of what would be missing: beyond the end, and what the baseline took away up to it (from time 0 on). */
+export function hiddenMoments({ level, as }: Hidden, end: number): RawFour {
+  const beyond = decayMoments(level, 1 / end, end);
+  const under = (k: number): number => (level * end ** (k + 1)) / (k + (as === "drift" ? 2 : 1));
+  return beyond.map((m, k) => m + under(k)) as unknown as RawFour;
 }
 
 /**
  * The baseline from the points before the injection and those after the tail has settled; undefined where there are
- * neither. A constant takes the points before if there are 3, a drift a straight line through both.
+ * neither. A constant takes the points before if there are 3, a drift a straight line through both. Where a slow tail
+ * still lies over the end of a pulse's record, baseline and tail are fitted together; where none stands out, what the
+ * baseline may hide of one is told.
  * @param before how many points lie before the injection
  * @param sd     scatter of one point
  */
 export function baselineOf(
+  t: Float64Array,
+  y: Float64Array,
+  before: number,
+  sd: number,
+  mode: "constant" | "drift",
+  isPulse = true,
+): Baseline | undefined {
+  const early = range(0, before);
+  const record = isPulse && t.length - before >= 20 && (mode === "drift" || early.length < 3);
+  const late: TailedRecord = { time: t, value: y, before, peak: peakOf(y, before), mode };
+  const scatter = record ? lateScatter(late, sd) : sd;
+  const joint = record ? slowTailOf(late, scatter) : undefined;
+  if (joint) {
+    return {
+      level: joint.offset,
+      slope: joint.drift,
+      middle: joint.middle,
+      levelError: Math.sqrt(joint.covariance[0]),
+      slopeError: Math.sqrt(joint.covariance[5]),
+      from: "under the tail",
+      driftUnknown: false,
+      tail: joint,
+    };
+  }
+  const plain = plainBaseline(t, y, before, sd, mode);
+  if (!plain || !record || plain.from === "before the injection") return plain;
+  const as = plain.from === "after the tail" ? "constant" : "drift";
+  const { level, error } = hiddenLevel({ ...late, mode: as }, scatter);
+  return { ...plain, hidden: { level: Math.hypot(level, error), as } };
+}
+
+/** A straight line or a constant, as if nothing but noise lay over it. */
+function plainBaseline(
   t: Float64Array,
   y: Float64Array,
   before: number,
@@ -44,6 +101,18 @@ export function baselineOf(
     from: use === early ? "before the injection" : "after the tail",
     driftUnknown: mode === "drift",
   };
+}
+
+function peakOf(y: Float64Array, before: number): number {
+  let peak = before;
+  for (let i = before; i < y.length; i++) if (y[i] > y[peak]) peak = i;
+  return peak;
+}
+
+/** Scatter of the last third after the peak; sharp fronts make that of a whole curve look larger. */
+function lateScatter({ time, value, peak }: TailedRecord, sd: number): number {
+  const from = time.length - Math.max(12, Math.floor((time.length - peak) / 3));
+  return (from > peak && roughness(time.subarray(from), value.subarray(from))) || sd;
 }
 
 /** The value of a baseline at time t. */

@@ -8,6 +8,8 @@ import { type Noise, noiseOf } from "./noise.js";
 /** What one step of cleaning did: the figures of the curve after it, trapezoid on its points, nothing extrapolated. SI. */
 export interface CleanStep extends Measures {
   readonly name: string;
+  /** True where t10 was shifted by a lag only, which blurs it besides. */
+  readonly approximate?: boolean;
   /** The unit of the value at this step: the detector's until the calibration. */
   readonly unit: Unit;
 }
@@ -84,12 +86,15 @@ export function cleanReading(trial: Trial, reading: Reading): CleanCurve | undef
   const count = before < 0 ? t.length : before;
   const noise = noiseOf(t, y, count, reading.noise);
   const typical = noise.sd[0] ?? 0;
-  const baseline = reading.baseline === "none" ? undefined : baselineOf(t, y, count, typical, reading.baseline);
+  const baseline =
+    reading.baseline === "none" ? undefined : baselineOf(t, y, count, typical, reading.baseline, !isStep);
   if (baseline) {
     const under = baseline;
     y = y.map((c, i) => c - baselineAt(under, t[i]));
     note("baseline");
   }
+  takeOff(steps, "injection width", 0, width ** 2 / 12);
+  takeOff(steps, "detector lag", lag, lag ** 2);
   return {
     at: reading.at,
     time: t,
@@ -103,6 +108,21 @@ export function cleanReading(trial: Trial, reading: Reading): CleanCurve | undef
     added: { mean: lag, variance: lag ** 2 + width ** 2 / 12, third: 2 * lag ** 3 },
     steps,
   };
+}
+
+/** A step of cleaning that leaves the curve as it is and is taken off its moments. */
+export function takeOff(steps: CleanStep[], name: string, mean: number, variance: number): void {
+  if (mean === 0 && variance === 0) return;
+  const last = steps[steps.length - 1];
+  const less = (x: number | undefined, by: number): number | undefined => (x === undefined ? undefined : x - by);
+  steps.push({
+    ...last,
+    name,
+    mean: less(last.mean, mean),
+    variance: less(last.variance, variance),
+    t10: less(last.t10, mean),
+    ...(mean === 0 ? {} : { approximate: true }),
+  });
 }
 
 /** A step that is taken back ends the record: what follows is another step. */

@@ -62,7 +62,7 @@ const wording = {
     weight: "caution",
     message: "less tracer came out than went in",
     couldBe:
-      "sorption or reaction, an outlet not measured, a tail not waited for, or a wrong dose, flow or calibration",
+      "sorption or reaction, an outlet not measured or fed otherwise than by its flow, a tail not waited for, or a wrong dose, flow or calibration",
     next: "check dose, flow and calibration; look for a second way out; measure longer",
   },
   "recovery-high": {
@@ -100,6 +100,19 @@ const wording = {
     message: "a drift needs points before the injection and after the tail: a constant was taken off",
     couldBe: "a log that starts late or ends early",
     next: "log before the injection and until the reading has settled",
+  },
+  "baseline-from-end": {
+    weight: "caution",
+    message: "the baseline was drawn through the end of the record: a slow tail that lies under it would be taken off",
+    couldBe: "a tail slower than the record, or none at all",
+    next: "measure longer; log before the injection and a blank at the end; fit a network, which keeps tail and drift apart",
+  },
+  "tail-with-baseline": {
+    weight: "caution",
+    message:
+      "a slow tail still lay over the end of the record: baseline and tail were fitted together, as a straight line and decays",
+    couldBe: "slow exchange with a stagnant zone; a drift that is not straight would look like it",
+    next: "compare with the fitted networks; measure longer; measure a blank at the end to know the drift",
   },
   "baseline-left": {
     weight: "caution",

@@ -99,13 +99,36 @@ export function judgeEnds(curve: CleanCurve, response: Response, moments: RawMom
   return found;
 }
 
-/** Recovery outside 90 to 110 %, by more than two of its standard errors where they are known. */
-export function judgeRecovery(at: string, recovery: Figure): Finding[] {
+/**
+ * Recovery outside 90 to 110 % of what is expected, by more than two of its standard errors where they are known.
+ * @param expected share of the tracer that a well-mixed vessel would send this way: 1 at an only outlet
+ * @param unseen   the other outlets, which were not measured
+ */
+export function judgeRecovery(at: string, recovery: Figure, expected = 1, unseen: readonly string[] = []): Finding[] {
   if (recovery.value === undefined) return [];
   const error = recovery.standardError;
-  const evidence = `recovery ${percent(recovery.value)}${!error ? "" : ` ± ${percent(error)}`}`;
-  if (recovery.value < 0.9) return [finding("recovery-low", at, evidence)];
-  return recovery.value > 1.1 ? [finding("recovery-high", at, evidence)] : [];
+  const share = expected === 1 ? "" : `, ${percent(expected)} of the flow leaves here`;
+  const others = unseen.length === 0 ? "" : `; not measured: ${unseen.join(", ")}`;
+  const evidence = `recovery ${percent(recovery.value)}${!error ? "" : ` ± ${percent(error)}`}${share}${others}`;
+  const ratio = recovery.value / expected;
+  if (isClose(ratio) || Math.abs(ratio - 1) <= (2 * (error ?? 0)) / expected) return [];
+  return [finding(ratio < 1 ? "recovery-low" : "recovery-high", at, evidence)];
+}
+
+const isClose = (ratio: number): boolean => ratio >= 0.9 && ratio <= 1.1;
+
+/** What a baseline that was drawn through the end of the record leaves open of the moments. */
+export function judgeBaseline(curve: CleanCurve, found: RawMoments, meanError: number): Finding[] {
+  const { baseline, at, timeUnit } = curve;
+  const error = formatQuantity(meanError, timeUnit, 2);
+  if (baseline?.tail) {
+    const slow = formatQuantity(1 / baseline.tail.rate, timeUnit, 3);
+    return [finding("tail-with-baseline", at, `time constant of the tail ${slow}; mean ± ${error} with it`)];
+  }
+  const { area, mean } = found.doubt;
+  if (!baseline?.hidden || !(area.hidden > 0.005 * found.area || mean.hidden > 0.01 * found.mean)) return [];
+  const evidence = `a tail not told from it could hold ${percent(area.hidden / found.area)} of the area; mean ± ${error} with it`;
+  return [finding("baseline-from-end", at, evidence)];
 }
 
 /** Mean against volume over flow: told only where they differ by more than two standard errors. */
@@ -120,10 +143,23 @@ export function judgeMean(at: string, mean: Figure, tau: Known, time: Unit, unse
   return [finding(unseen > 0.05 ? "dead-or-tail" : "mean-early", at, evidence)];
 }
 
-/** A: fit for a number that others rely on; B: for modelling; C: to look at only. Tells no more than the findings do. */
-export function gradeOf(findings: readonly Finding[], recovery: readonly Figure[]): "A" | "B" | "C" {
+/** What a grade looks at: recovery over what was expected, where it is known, and the mean. */
+export interface Graded {
+  readonly recovery: number | undefined;
+  readonly mean: Figure;
+}
+
+/** A: fit for a number that others rely on; B: for modelling; C: to look at only. */
+export function gradeOf(findings: readonly Finding[], readings: readonly Graded[]): "A" | "B" | "C" {
   if (findings.some((f) => f.weight === "stop" || f.code === "tail-open" || f.code === "tail-power")) return "C";
-  const known = recovery.length > 0 && recovery.every((r) => r.value !== undefined);
-  if (known && recovery.some((r) => r.value !== undefined && (r.value < 0.7 || r.value > 1.3))) return "C";
-  return known && findings.every((f) => f.weight === "note") ? "A" : "B";
+  if (readings.some(({ recovery: r }) => r !== undefined && (r < 0.7 || r > 1.3))) return "C";
+  // A mean that falls short of the volume is no number to rely on, whatever the reason.
+  const short = findings.some((f) => f.code === "mean-early" || f.code === "dead-or-tail");
+  const sure = ({ recovery, mean }: Graded): boolean =>
+    recovery !== undefined &&
+    isClose(recovery) &&
+    mean.value !== undefined &&
+    (mean.standardError ?? 0) <= 0.1 * mean.value;
+  const all = readings.length > 0 && readings.every(sure);
+  return all && !short && findings.every((f) => f.weight === "note") ? "A" : "B";
 }

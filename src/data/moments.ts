@@ -1,15 +1,17 @@
 import type { Reading, Trial } from "../model/trial.js";
-import { dimensions } from "../units/dimension.js";
+import { dimensions, sameDimension } from "../units/dimension.js";
+import { isUnitFault, parseUnit } from "../units/parse.js";
 import { one, type Unit } from "../units/unit.js";
-import { type CleanCurve, cleanReading, productUnit } from "./clean.js";
+import { type CleanCurve, cleanReading, productUnit, takeOff } from "./clean.js";
 import { distributionOf } from "./distribution.js";
-import { type Figure, figure } from "./figure.js";
+import { momentErrors } from "./error.js";
+import { type Figure, figure, type Known } from "./figure.js";
 import { type Finding, finding } from "./finding.js";
 import { closedPeclet, holdback, segregation } from "./indices.js";
 import { inletMoments } from "./inlet.js";
-import { gradeOf, hopeless, judgeEnds, judgeMean, judgeRecovery } from "./judge.js";
+import { gradeOf, hopeless, judgeBaseline, judgeEnds, judgeMean, judgeRecovery } from "./judge.js";
 import { onlyFlow, recoveryOf, tauOf, whyNoRecovery } from "./recovery.js";
-import { momentsOf, type Response } from "./response.js";
+import { momentsOf } from "./response.js";
 import { type MomentsOptions, type MomentsResult, nothing, type ReadingMoments } from "./result.js";
 import { seenResponse } from "./seen.js";
 
@@ -25,8 +27,26 @@ export function readMoments(trial: Trial, options: MomentsOptions = {}): Moments
     if (curve) readings.push(readCurve(trial, reading, curve, options, findings, notSupported));
     else notSupported.push(`the reading at '${reading.at}' is a draft: it has no data`);
   }
-  const recovery = readings.map((r) => r.recovery);
-  return { readings, grade: gradeOf(findings, recovery), findings, notSupported };
+  const together = allOutlets(trial, readings, options);
+  if (together) findings.push(...judgeRecovery("all outlets", together));
+  const graded = readings.map(({ recovery, expected, mean }) => ({
+    recovery: together ? together.value : recovery.value && recovery.value / (expected ?? 1),
+    mean,
+  }));
+  return { readings, grade: gradeOf(findings, graded), findings, notSupported };
+}
+
+/** What came out of all outlets of a vessel that has several, where all were read. */
+function allOutlets(trial: Trial, readings: readonly ReadingMoments[], { wayOut }: MomentsOptions): Figure | undefined {
+  const first = readings[0] && wayOut?.(readings[0].at);
+  if (trial.injections[0]?.form.is === "step" || !first?.isOutlet || first.others.length === 0) return undefined;
+  const outlets = [readings[0].at, ...first.others];
+  const recovered = outlets.map((name) => readings.find((r) => r.at === name)?.recovery);
+  if (readings.length !== outlets.length || !recovered.every((r) => r?.value !== undefined)) return undefined;
+  const sum = recovered.reduce((total, r) => total + (r?.value ?? 0), 0);
+  // Dose and flow meter are the same for all: their errors add up.
+  const error = recovered.reduce((total, r) => total + (r && "standardError" in r ? (r.standardError ?? 0) : 0), 0);
+  return figure(sum, one, error);
 }
 
 /** One cleaned curve. Findings and what is not supported are added to the lists given. */
@@ -40,11 +60,13 @@ export function readCurve(
 ): ReadingMoments {
   const injection = trial.injections[0];
   const flow = options.flowAt?.(reading.at) ?? onlyFlow(trial);
+  const whole = options.throughflow ?? flow;
+  const rule = options.rule ?? "trapezoid";
   const stop =
     (trial.injections.length > 1
       ? finding("several-injections", curve.at, `${trial.injections.length} injections`)
       : undefined) ?? hopeless(curve);
-  const seen = stop ?? seenResponse(injection, reading, curve, flow, options.rule ?? "trapezoid");
+  const seen = stop ?? seenResponse(injection, reading, curve, whole, rule, dilutionOf(injection.at, options));
   const found = "code" in seen ? seen : (momentsOf(seen.response) ?? finding("no-area", curve.at, "area of 0 or less"));
   if ("code" in seen || "code" in found) {
     findings.push("code" in found ? found : (seen as Finding));
@@ -55,48 +77,66 @@ export function readCurve(
 
   const time = options.timeUnit ?? curve.timeUnit;
   const time2 = productUnit(`${time.name}^2`, time, time);
-  const inlet = injection.form.is === "signal" ? inletMoments(injection, options.rule ?? "trapezoid") : undefined;
+  const inlet = injection.form.is === "signal" ? inletMoments(injection, rule) : undefined;
   const mean = found.mean - curve.added.mean - (inlet?.mean ?? 0);
   const variance = found.variance - curve.added.variance - (inlet?.variance ?? 0);
   const third = found.third - curve.added.third - (inlet?.third ?? 0);
   const known = response.tail.is === "closed" || response.tail.is === "exponential";
-  const error = (gradient: Float64Array, beyond: number): number =>
-    Math.hypot(errorOf(gradient, response, curve), beyond);
-  const meanError = error(found.gradient.mean, found.tailError.mean);
-  const varianceError = error(found.gradient.variance, found.tailError.variance);
+  const errors = momentErrors(curve, response, found, rule);
   const skew = variance > 0 ? third / variance ** 1.5 : undefined;
-  const skewGradient = found.gradient.third.map(
-    (g, i) => g / variance ** 1.5 - (1.5 * third * found.gradient.variance[i]) / variance ** 2.5,
-  );
 
   const F = distributionOf(response, found);
   const at = (p: number): number | undefined => (inlet ? undefined : shifted(F.quantile(p), curve.added.mean));
   const [t10, t50, t90] = [at(0.1), at(0.5), at(0.9)];
-  const meanFigure = figure(known ? mean : undefined, time, meanError);
-  const varianceFigure = figure(known && variance > 0 ? variance : undefined, time2, varianceError);
-  const recovery = recoveryOf(injection, reading, curve, found, flow, recovered, inlet);
-  findings.push(...judgeRecovery(curve.at, recovery));
+  const meanFigure = figure(known ? mean : undefined, time, errors.mean);
+  const varianceFigure = figure(known && variance > 0 ? variance : undefined, time2, errors.variance);
+  findings.push(...judgeBaseline(curve, found, errors.mean));
+  const way = options.wayOut?.(reading.at);
+  const alone = !way || (way.isOutlet && way.others.length === 0);
+  const unseen = way?.others.filter((name) => !trial.readings.some((r) => r.at === name)) ?? [];
+  const expected = alone || injection.form.is === "step" || !way?.isOutlet ? undefined : way.share;
+  const recovery = recoveryOf(injection, reading, curve, found, flow, recovered, inlet, errors.area);
+  // Outlets that were all read are judged together.
+  if (expected === undefined || unseen.length > 0)
+    findings.push(...judgeRecovery(curve.at, recovery, expected, expected === undefined ? [] : unseen));
   if (inlet)
     notSupported.push(
       `percentiles and indices at '${curve.at}': a measured inlet gives moments only; fit a network for the curve`,
     );
   if (recovery.value === undefined) notSupported.push(`recovery at '${curve.at}': ${whyNoRecovery(reading, flow)}`);
 
-  const tau = tauOf(options, flow);
-  if (!tau)
+  const tau = alone ? tauOf(options, flow) : undefined;
+  if (!alone)
+    notSupported.push(
+      `effective volume, holdback, segregation and dead volume at '${curve.at}': ${way.isOutlet ? `liquid leaves by ${way.others.join(", ")}, too` : "it is not the outlet of the vessel"}`,
+    );
+  else if (!tau)
     notSupported.push(`holdback, segregation and dead volume at '${curve.at}': the volume or the flow is not known`);
   else findings.push(...judgeMean(curve.at, meanFigure, tau, time, Math.abs(found.tail.area)));
+  const steps = [...curve.steps];
+  if (inlet) takeOff(steps, "measured inlet", inlet.mean, inlet.variance);
+  const last = steps[steps.length - 1];
+  steps.push({
+    ...last,
+    name: "front and tail",
+    area: response.is === "density" ? found.area : last.area,
+    mean: meanFigure.value,
+    variance: varianceFigure.value,
+    t10,
+    ...(curve.added.mean > 0 ? { approximate: true } : {}),
+  });
   const relative = variance / mean ** 2;
   const indices: Record<string, Figure> = {
     morrill: figure(t10 !== undefined && t90 !== undefined && t10 > 0 ? t90 / t10 : undefined, one),
-    tanks: figure(known && variance > 0 ? 1 / relative : undefined, one),
+    tanks: figure(known && variance > 0 ? 1 / relative : undefined, one, errors.relative / relative ** 2),
     peclet: figure(known ? closedPeclet(relative) : undefined, one),
-    ...(flow
+    ...(whole && alone
       ? {
-          "effective-volume": figure(
-            known ? flow.value * mean : undefined,
-            liter,
-            known ? flow.value * meanError : undefined,
+          "effective-volume": effectiveVolume(
+            whole,
+            known ? mean : undefined,
+            errors.mean,
+            volumeUnitOf(trial, options),
           ),
         }
       : {}),
@@ -112,7 +152,7 @@ export function readCurve(
           "mean-over-tau": figure(
             known ? mean / tau.value : undefined,
             one,
-            Math.hypot(meanError / tau.value, ((tau.sd ?? 0) * mean) / tau.value ** 2),
+            Math.hypot(errors.mean / tau.value, ((tau.sd ?? 0) * mean) / tau.value ** 2),
           ),
         }
       : {}),
@@ -124,35 +164,46 @@ export function readCurve(
     area: figure(
       found.area,
       response.is === "density" ? productUnit(`${curve.unit.name} ${time.name}`, curve.unit, time) : one,
+      errors.area,
     ),
     recovery,
+    expected,
     mean: meanFigure,
     variance: varianceFigure,
-    skewness: figure(known ? skew : undefined, one, error(skewGradient, 0)),
+    skewness: figure(known ? skew : undefined, one, errors.skewness),
     t10: figure(t10, time),
     t50: figure(t50, time),
     t90: figure(t90, time),
+    percentilesShifted: curve.added.mean > 0,
     indices,
     tail: response.tail,
     tailShare: found.tail,
     noise: { sd: figure(curve.noise.sd[0], curve.unit), from: curve.noise.from },
-    steps: curve.steps,
+    steps,
     curve: { time: F.time, E: F.E, F: F.F },
   };
 }
 
+/** Flow times mean: what takes part, at the one outlet of a vessel (errors of flow and mean carried). */
+function effectiveVolume(flow: Known, mean: number | undefined, meanError: number, unit: Unit): Figure {
+  if (mean === undefined) return figure(undefined, unit);
+  return figure(flow.value * mean, unit, Math.hypot(flow.value * meanError, (flow.sd ?? 0) * mean));
+}
+
+/** The unit asked for; else that of the day's flow, whose name begins with it; else the liter. */
+function volumeUnitOf(trial: Trial, { volumeUnit }: MomentsOptions): Unit {
+  if (volumeUnit) return volumeUnit;
+  const [flow] = [...trial.flows.values()];
+  const found = parseUnit(flow?.unit?.name.split("/")[0] ?? "L");
+  return !isUnitFault(found) && sameDimension(found.dimension, dimensions.volume) ? found : liter;
+}
+
 const liter: Unit = { name: "L", factor: 1e-3, offset: 0, dimension: dimensions.volume };
 
-const shifted = (t: number | undefined, by: number): number | undefined => (t === undefined ? undefined : t - by);
-
-/** One standard error of a figure with this gradient by each point: scatter of points, and of the baseline under all. */
-function errorOf(gradient: Float64Array, { sd, time, is }: Response, { baseline }: CleanCurve): number {
-  let [points, level, slope] = [0, 0, 0];
-  for (let i = 0; i < gradient.length; i++) {
-    points += (gradient[i] * sd[i]) ** 2;
-    level += gradient[i];
-    slope += gradient[i] * (time[i] - (baseline?.middle ?? 0));
-  }
-  if (!baseline || is === "washout") return Math.sqrt(points);
-  return Math.sqrt(points + (level * baseline.levelError) ** 2 + (slope * baseline.slopeError) ** 2);
+/** A level dosed into one of several feeds comes out thinned by the others. */
+function dilutionOf(at: string, { feeds }: MomentsOptions): number {
+  const own = feeds?.get(at);
+  return own === undefined || !feeds ? 1 : own / [...feeds.values()].reduce((sum, f) => sum + f, 0);
 }
+
+const shifted = (t: number | undefined, by: number): number | undefined => (t === undefined ? undefined : t - by);

@@ -5,7 +5,7 @@ import type { CleanCurve } from "./clean.js";
 import { type Figure, figure, type Known } from "./figure.js";
 import type { RawMoments } from "./response.js";
 
-/** Tracer seen over tracer given. */
+/** Tracer seen over tracer given, with the errors of area, flow and dose. */
 export function recoveryOf(
   { form }: Injection,
   reading: Reading,
@@ -14,17 +14,18 @@ export function recoveryOf(
   flow: Known | undefined,
   recovered: number | undefined,
   inlet: RawMoments | undefined,
+  areaError: number,
 ): Figure {
   if (form.is === "step") return figure(recovered, one);
   if (reading.scale === "free") return figure(undefined, one);
-  if (inlet) return figure(found.area / inlet.area, one);
+  if (inlet) return figure(found.area / inlet.area, one, areaError / inlet.area);
   if (form.is !== "pulse" || !flow) return figure(undefined, one);
   const dose = form.amount.of([]);
   if (!sameDimension(over(form.amount.dimension, dimensions.volume), curve.unit.dimension))
     return figure(undefined, one);
   const recovery = (flow.value * found.area) / dose;
   const relative = Math.hypot((flow.sd ?? 0) / flow.value, (form.amount.sd?.([]) ?? 0) / dose);
-  return figure(recovery, one, relative * recovery);
+  return figure(recovery, one, Math.hypot(relative, areaError / found.area) * recovery);
 }
 
 /** In words: what is missing for a recovery. */

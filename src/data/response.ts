@@ -1,5 +1,7 @@
+import { type Baseline, type Hidden, hiddenMoments } from "./baseline.js";
 import type { CleanCurve } from "./clean.js";
-import { type Tail, tailError, tailMoments, tailOf } from "./tail.js";
+import type { SlowTail } from "./slow-tail.js";
+import { type RawFour, type Tail, tailError, tailGradient, tailMoments, tailOf } from "./tail.js";
 import { type Rule, weights } from "./weights.js";
 
 /**
@@ -13,20 +15,62 @@ export interface Response {
   readonly sd: Float64Array;
   readonly weight: Float64Array;
   readonly tail: Tail;
+  readonly hidden?: Hidden | undefined;
+  /** One standard error of the area between the injection and the first point after it; there where that was not seen. */
+  readonly front?: number;
 }
 
 /** What a curve needs to be read: a cleaned reading has it, and a measured inlet. */
 export interface Sampled extends Pick<CleanCurve, "time" | "value" | "before"> {
   readonly noise: { readonly sd: Float64Array };
+  readonly baseline?: Baseline | undefined;
+  /** When the injection began; where left out nothing is made of the time before the first point. */
+  readonly start?: number;
 }
 
-/** The curve after a pulse. Points before the injection are left out. */
+/**
+ * The curve after a pulse. Points before the injection are left out; from its beginning to the first point after it the
+ * curve is taken to rise in a straight line from nothing, which may be anything between nothing and twice that.
+ */
 export function pulseResponse(curve: Sampled, rule: Rule): Response {
-  const time = curve.time.subarray(curve.before);
-  const value = curve.value.subarray(curve.before);
-  const sd = curve.noise.sd.subarray(curve.before);
-  return { is: "density", time, value, sd, weight: weights(time, rule), tail: tailOf(time, value, sd) };
+  const { before, start } = curve;
+  const seen = [curve.time, curve.value, curve.noise.sd].map((y) => y.subarray(before));
+  const gap = start === undefined || seen[0].length === 0 ? 0 : seen[0][0] - start;
+  const lead = gap > 0 ? [start ?? 0, 0, 0] : undefined;
+  const [time, value, sd] = lead ? seen.map((y, i) => led(lead[i], y)) : seen;
+  const joint = curve.baseline?.tail;
+  const tail = joint ? jointTail(joint) : tailOf(time, value, sd);
+  return {
+    is: "density",
+    time,
+    value,
+    sd,
+    weight: weights(time, rule),
+    tail,
+    hidden: curve.baseline?.hidden,
+    ...(lead ? { front: (gap * Math.abs(value[1])) / Math.sqrt(12) } : {}),
+  };
 }
+
+function led(first: number, y: Float64Array): Float64Array {
+  const longer = new Float64Array(y.length + 1);
+  longer[0] = first;
+  longer.set(y, 1);
+  return longer;
+}
+
+const jointTail = (joint: SlowTail): Tail => ({
+  is: "exponential",
+  end: joint.end,
+  level: joint.level,
+  rate: joint.rate,
+  from: joint.from,
+  points: joint.points,
+  centreError: 0,
+  rateError: 0,
+  middle: joint.end,
+  joint,
+});
 
 /** What a step came from and goes to, in the reading's unit. */
 export interface Levels {
@@ -57,11 +101,60 @@ export interface RawMoments {
   readonly variance: number;
   /** Third central moment, s^3. */
   readonly third: number;
-  readonly gradient: { readonly mean: Float64Array; readonly variance: Float64Array; readonly third: Float64Array };
-  /** One standard error of mean and variance from the doubt in the tail alone. */
-  readonly tailError: { readonly mean: number; readonly variance: number };
+  readonly gradient: {
+    readonly area: Float64Array;
+    readonly mean: Float64Array;
+    readonly variance: Float64Array;
+    readonly third: Float64Array;
+  };
+  /** What the tail leaves open of each figure. */
+  readonly doubt: Readonly<Record<keyof typeof figures, TailDoubt>>;
   /** What the extrapolated tail makes of area, mean and variance: its share of each (variance: about the final mean). */
   readonly tail: { readonly area: number; readonly mean: number; readonly variance: number };
+}
+
+/** What the tail alone leaves open of a figure. */
+export interface TailDoubt {
+  /** One standard error. */
+  readonly error: number;
+  /** For a tail fitted together with the baseline: change by its level and by its rate. */
+  readonly gradient: readonly [level: number, rate: number];
+  /** By how much a tail that a baseline may have taken away would move it. */
+  readonly hidden: number;
+}
+
+type Central = Pick<RawMoments, "area" | "mean" | "variance" | "third">;
+
+/** The figures that carry an error. `relative`: variance over squared mean. */
+export const figures = {
+  area: (m: Central) => m.area,
+  mean: (m: Central) => m.mean,
+  variance: (m: Central) => m.variance,
+  skewness: (m: Central) => m.third / m.variance ** 1.5,
+  relative: (m: Central) => m.variance / m.mean ** 2,
+} as const;
+
+/** @param of moments with a tail of these raw moments */
+function doubtsOf({ tail, time, hidden }: Response, of: (raw: RawFour) => Central): RawMoments["doubt"] {
+  const end = time[time.length - 1];
+  const beyond = tailMoments(tail);
+  const more = hidden && hiddenMoments(hidden, end);
+  const moved = beyond.map((m, k) => m + (more?.[k] ?? 0)) as unknown as RawFour;
+  const doubt = (figure: (m: Central) => number): TailDoubt => {
+    const by = (raw: RawFour): number => figure(of(raw));
+    return {
+      error: tailError(tail, end, by),
+      gradient: tailGradient(tail, by),
+      hidden: Math.abs(by(moved) - by(beyond)),
+    };
+  };
+  return {
+    area: doubt(figures.area),
+    mean: doubt(figures.mean),
+    variance: doubt(figures.variance),
+    skewness: doubt(figures.skewness),
+    relative: doubt(figures.relative),
+  };
 }
 
 /** Moments of a response, its exponential tail added in closed form. Undefined where the area is not above 0. */
@@ -69,7 +162,8 @@ export function momentsOf(response: Response): RawMoments | undefined {
   return response.is === "density" ? densityMoments(response) : washoutMoments(response);
 }
 
-function densityMoments({ time, value, weight, tail }: Response): RawMoments | undefined {
+function densityMoments(response: Response): RawMoments | undefined {
+  const { time, value, weight, tail } = response;
   const beyond = tailMoments(tail);
   let [m0, m1] = [0, 0];
   for (let i = 0; i < time.length; i++) {
@@ -96,28 +190,34 @@ function densityMoments({ time, value, weight, tail }: Response): RawMoments | u
     variance,
     third,
     gradient: {
+      area: weight,
       mean: by((off) => off),
       variance: by((off) => off * off - variance),
       third: by((off) => off ** 3 - 3 * variance * off - third),
     },
-    tailError: {
-      mean: tailError(tail, ([a, b]) => (m1 + b) / (m0 + a)),
-      variance: tailError(tail, (raw) => {
-        const [a2] = aboutMean(raw, mean);
-        const moved = (m1 + raw[1]) / (m0 + raw[0]) - mean;
-        return (s2 + a2) / (m0 + raw[0]) - moved * moved;
-      }),
-    },
+    doubt: doubtsOf(response, (raw) => {
+      const whole = m0 + raw[0];
+      const moved = (m1 + raw[1]) / whole - mean;
+      const [a2, a3] = aboutMean(raw, mean);
+      const second = (s2 + a2) / whole - moved ** 2;
+      return {
+        area: whole,
+        mean: mean + moved,
+        variance: second,
+        third: (s3 + a3) / whole - 3 * moved * second - moved ** 3,
+      };
+    }),
     tail: { area: beyond[0] / area, mean: beyond[1] / (area * mean), variance: tail2 / (area * variance) },
   };
 }
 
-const aboutMean = ([a, b, c, d]: readonly [number, number, number, number], m: number): [number, number] => [
+const aboutMean = ([a, b, c, d]: RawFour, m: number): [number, number] => [
   c - 2 * m * b + m * m * a,
   d - 3 * m * c + 3 * m * m * b - m ** 3 * a,
 ];
 
-function washoutMoments({ time, value, weight, tail }: Response): RawMoments | undefined {
+function washoutMoments(response: Response): RawMoments | undefined {
+  const { time, value, weight, tail } = response;
   const beyond = tailMoments(tail);
   const raw = [0, 0, 0];
   for (let i = 0; i < time.length; i++) {
@@ -134,14 +234,15 @@ function washoutMoments({ time, value, weight, tail }: Response): RawMoments | u
     variance,
     third,
     gradient: {
+      area: new Float64Array(time.length),
       mean: by(() => 1),
       variance: by((off) => 2 * off),
       third: by((off) => 3 * (off * off - variance)),
     },
-    tailError: {
-      mean: tailError(tail, ([a]) => raw[0] + a),
-      variance: tailError(tail, ([a, b]) => raw[1] + 2 * b - (raw[0] + a) ** 2),
-    },
+    doubt: doubtsOf(response, (beyond) => {
+      const [q1, q2, q3] = raw.map((m, k) => m + (k + 1) * beyond[k]);
+      return { area: 1, mean: q1, variance: q2 - q1 * q1, third: q3 - 3 * q1 * q2 + 2 * q1 ** 3 };
+    }),
     tail: {
       area: tail.is === "exponential" ? tail.level : 0,
       mean: beyond[0] / r1,

@@ -13,9 +13,25 @@ export interface MomentsOptions {
   /** Volume of the vessel, m3, and the whole flow through it, m3/s. */
   readonly volume?: Known | undefined;
   readonly throughflow?: Known | undefined;
+  /** The unit that volumes are shown in; that of the flow where left out. */
+  readonly volumeUnit?: Unit;
+  /** How a place stands among the ways out of the vessel. */
+  readonly wayOut?: (at: string) => WayOut | undefined;
+  /** Flow of each feed, m3/s. */
+  readonly feeds?: ReadonlyMap<string, number>;
   readonly rule?: Rule;
   /** The unit that times are shown in; that of the reading's own where left out. */
   readonly timeUnit?: Unit;
+}
+
+/** How a place stands among the ways out of a vessel. */
+export interface WayOut {
+  /** True where what passes here is what leaves by an outlet. */
+  readonly isOutlet: boolean;
+  /** Flow through it over that of all feeds. */
+  readonly share: number;
+  /** The other outlets that anything leaves by. */
+  readonly others: readonly string[];
 }
 
 /** A reading without a model. Times count from the injection. */
@@ -25,13 +41,17 @@ export interface ReadingMoments {
   readonly timeUnit: Unit;
   readonly area: Figure;
   readonly recovery: Figure;
+  /** The share of the flow that leaves here, where there are other outlets: what recovery to expect. */
+  readonly expected: number | undefined;
   readonly mean: Figure;
   readonly variance: Figure;
   readonly skewness: Figure;
   readonly t10: Figure;
   readonly t50: Figure;
   readonly t90: Figure;
-  /** morrill, tanks, peclet; with volume and flow: holdback, segregation, t10-over-tau, mean-over-tau; with flow: effective-volume. */
+  /** True where percentiles were shifted by a detector's lag only: they are approximate. */
+  readonly percentilesShifted: boolean;
+  /** morrill, tanks, peclet; at the one outlet, with volume and flow: holdback, segregation, t10-over-tau, mean-over-tau; with flow: effective-volume. */
   readonly indices: Readonly<Record<string, Figure>>;
   readonly tail: Tail;
   /** What the extrapolated tail makes of each figure: fractions. */
@@ -58,12 +78,14 @@ export function nothing(curve: CleanCurve, time: Unit): ReadingMoments {
     timeUnit: time,
     area: none(productUnit(`${curve.unit.name} ${time.name}`, curve.unit, time)),
     recovery: none(one),
+    expected: undefined,
     mean: none(time),
     variance: none(productUnit(`${time.name}^2`, time, time)),
     skewness: none(one),
     t10: none(time),
     t50: none(time),
     t90: none(time),
+    percentilesShifted: false,
     indices: {},
     tail: { is: "open", level: Number.NaN },
     tailShare: { area: 0, mean: 0, variance: 0 },

@@ -8,13 +8,18 @@ import { roughness } from "./noise.js";
 import { pulseResponse, type Response, stepResponse } from "./response.js";
 import type { Rule } from "./weights.js";
 
-/** The curve to take moments of; for a step also how much of it came through. */
+/**
+ * The curve to take moments of; for a step also how much of it came through.
+ * @param flow      that a dosed rate is spread over, m3/s
+ * @param dilution  share of all feeds that a dosed level comes with
+ */
 export function seenResponse(
   { form }: Injection,
   reading: Reading,
   curve: CleanCurve,
   flow: Known | undefined,
   rule: Rule,
+  dilution = 1,
 ): { response: Response; recovered: number | undefined } | Finding {
   if (form.is !== "step") return { response: pulseResponse(curve, rule), recovered: undefined };
   const n = curve.value.length;
@@ -23,11 +28,13 @@ export function seenResponse(
   const before = curve.before > 0 && !curve.baseline ? meanOf(curve.value, 0, curve.before) : 0;
   const trusted = reading.scale === "known";
   const from =
-    trusted && form.from && sameDimension(form.from.dimension, curve.unit.dimension) ? form.from.of([]) : before;
+    trusted && form.from && sameDimension(form.from.dimension, curve.unit.dimension)
+      ? dilution * form.from.of([])
+      : before;
   const level = form.level.of([]);
   const isLevel = sameDimension(form.level.dimension, curve.unit.dimension);
   const isRate = flow && sameDimension(over(form.level.dimension, dimensions.flow), curve.unit.dimension);
-  const to = !trusted ? undefined : isLevel ? level : isRate ? level / flow.value : undefined;
+  const to = !trusted ? undefined : isLevel ? dilution * level : isRate ? level / flow.value : undefined;
   const noise = roughness(curve.time, curve.value);
   const rise = Math.abs(plateau - from);
   const settled = Math.abs(plateau - earlier) <= Math.max(2 * noise * Math.sqrt(2 / size), 2e-3 * rise);

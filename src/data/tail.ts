@@ -1,9 +1,13 @@
+import { decayOver } from "./decay.js";
+import { logLine } from "./log-line.js";
 import { roughness } from "./noise.js";
+import { isPowerLaw } from "./power-law.js";
+import type { SlowTail } from "./slow-tail.js";
 
 /** How a curve ends, and what lies beyond its last point. Times in the curve's own unit. */
 export type Tail =
-  /** It has come down to nothing. */
-  | { readonly is: "closed" }
+  /** It has come down to nothing; what is not told from nothing may decay for `horizon` yet, from `level` on. */
+  | { readonly is: "closed"; readonly level: number; readonly horizon: number }
   /** level * exp(-rate (t - end)) from `end` on, fitted to `points` points since `from`. */
   | {
       readonly is: "exponential";
@@ -16,6 +20,8 @@ export type Tail =
       readonly centreError: number;
       readonly rateError: number;
       readonly middle: number;
+      /** Where it was fitted together with the baseline: the covariance of both, in place of the three above. */
+      readonly joint?: SlowTail;
     }
   /** A power law over more than a decade of time, or no steady decay: what lies beyond cannot be told. */
   | { readonly is: "power" | "open"; readonly level: number };
@@ -39,20 +45,48 @@ export function tailOf(t: Float64Array, y: Float64Array, sd: Float64Array): Tail
   let level = 0;
   for (let i = n - last; i < n; i++) level += y[i] / last;
   const more = level * (t[n - 1] - Math.min(0, t[0]));
-  if (more <= 2e-3 * area) return { is: "closed" };
   // The scatter of the end itself: a sharp front makes the roughness of the whole curve look like noise.
   const end = n - Math.max(12, Math.floor(n / 5));
   const scatter = end > peak ? Math.min(sd[n - 1], roughness(t.subarray(end), y.subarray(end))) : sd[n - 1];
+  if (more <= 2e-3 * area) return closedTail(t, y, peak, scatter);
   const tail = decayOf(t, y, peak, scatter, level);
   const lost = level <= (3 * scatter) / Math.sqrt(last);
-  return tail.is === "open" && (lost || more <= 0.02 * area) ? { is: "closed" } : tail;
+  return tail.is === "open" && (lost || more <= 0.02 * area) ? closedTail(t, y, peak, scatter) : tail;
+}
+
+/**
+ * What may still come after the end: the level of the last points after the curve was lost in noise, or its standard error,
+ * for as long as the decay took that was last seen above it.
+ */
+function closedTail(t: Float64Array, y: Float64Array, peak: number, scatter: number): Tail {
+  const n = t.length;
+  const stop = aboveNoise(y, peak, scatter);
+  // The later half of what lies in the noise: the decay still shows in the mean of the earlier one.
+  const from = Math.min((stop + n) >> 1, n - Math.max(1, Math.floor(n / 50)));
+  let [mean, square] = [0, 0];
+  for (let i = from; i < n; i++) {
+    mean += y[i] / (n - from);
+    square += y[i] * y[i];
+  }
+  const whole = t[n - 1] - Math.min(0, t[0]);
+  const half = (t[peak] + t[stop - 1]) / 2;
+  let [first, late] = [peak, peak];
+  while (first < stop && y[first] > 0.5 * y[peak]) first++;
+  while (late < stop && t[late] < half) late++;
+  if (stop - late >= 10) first = Math.max(first, late);
+  const rate = stop - first < 4 ? 0 : decayOver(t.subarray(first, stop), y.subarray(first, stop)).rate;
+  return {
+    is: "closed",
+    level: Math.max(mean, Math.sqrt(square) / (n - from)),
+    horizon: 1 / Math.max(rate, 1 / whole),
+  };
 }
 
 function decayOf(t: Float64Array, y: Float64Array, peak: number, scatter: number, level: number): Tail {
   const open: Tail = { is: "open", level };
   const stop = aboveNoise(y, peak, scatter);
   let first = stop - 1;
-  while (first > peak && y[first - 1] > 0 && y[first - 1] < 0.5 * y[peak]) first--;
+  while (first > peak && y[first - 1] < 0.5 * y[peak]) first--;
   if (stop - first < 4) return open;
   if (isPowerLaw(t, y, first, stop)) return { is: "power", level };
   const seen = window(t, y, first, stop);
@@ -110,64 +144,12 @@ function window(
   return best;
 }
 
-/** A straight line on log-log over a decade of time or more, much straighter than on log-linear. */
-function isPowerLaw(t: Float64Array, y: Float64Array, first: number, stop: number): boolean {
-  if (!(t[first] > 0) || t[stop - 1] < 10 * t[first] || stop - first < 10) return false;
-  const straight = logLine(t.map(Math.log), y, first, stop);
-  return straight.slope < 0 && straight.residual * 4 < logLine(t, y, first, stop).residual;
-}
+/** Integrals of t^k, k = 0 to 3. */
+export type RawFour = readonly [number, number, number, number];
 
-interface LogLine {
-  readonly slope: number;
-  readonly slopeError: number;
-  readonly residual: number;
-  /** Where slope and height are told independently, and the standard error of the height there. */
-  readonly middle: number;
-  readonly centreError: number;
-  at(x: number): number;
-}
-
-/** Least squares of ln y on x over [from, to); points weighted by y^2, as even noise on y makes them. */
-function logLine(x: Float64Array, y: Float64Array, from: number, to: number): LogLine {
-  let [w0, wx, wy] = [0, 0, 0];
-  for (let i = from; i < to; i++) {
-    if (!(y[i] > 0)) continue;
-    const w = y[i] * y[i];
-    w0 += w;
-    wx += w * x[i];
-    wy += w * Math.log(y[i]);
-  }
-  const [mx, my] = [wx / w0, wy / w0];
-  let [sxx, sxy, count] = [0, 0, 0];
-  for (let i = from; i < to; i++) {
-    if (!(y[i] > 0)) continue;
-    const w = y[i] * y[i];
-    sxx += w * (x[i] - mx) ** 2;
-    sxy += w * (x[i] - mx) * (Math.log(y[i]) - my);
-    count++;
-  }
-  const slope = sxy / sxx;
-  let residual = 0;
-  for (let i = from; i < to; i++) {
-    if (y[i] > 0) residual += y[i] * y[i] * (Math.log(y[i]) - my - slope * (x[i] - mx)) ** 2;
-  }
-  const spread = count > 2 ? residual / (count - 2) : 0;
-  return {
-    slope,
-    slopeError: Math.sqrt(spread / sxx),
-    residual,
-    middle: mx,
-    centreError: Math.sqrt(spread / w0),
-    at: (at) => my + slope * (at - mx),
-  };
-}
-
-/**
- * Raw moments of level * exp(-rate (t - end)) over [end, infinity): integral of t^k, k = 0 to 3. Closed forms, by parts.
- */
-export function tailMoments(tail: Tail): readonly [number, number, number, number] {
-  if (tail.is !== "exponential") return [0, 0, 0, 0];
-  const { level, rate: l, end: T } = tail;
+/** Of level * exp(-rate (t - end)) over [end, infinity). Closed forms, by parts. */
+export function decayMoments(level: number, rate: number, end: number): RawFour {
+  const [l, T] = [rate, end];
   const m0 = level / l;
   return [
     m0,
@@ -177,13 +159,30 @@ export function tailMoments(tail: Tail): readonly [number, number, number, numbe
   ];
 }
 
+/** What the extrapolated tail adds. */
+export const tailMoments = (tail: Tail): RawFour =>
+  tail.is === "exponential" ? decayMoments(tail.level, tail.rate, tail.end) : [0, 0, 0, 0];
+
+/** How a figure of the tail's raw moments changes with level and rate of a tail fitted with the baseline. */
+export function tailGradient(tail: Tail, of: (raw: RawFour) => number): readonly [level: number, rate: number] {
+  if (tail.is !== "exponential" || !tail.joint) return [0, 0];
+  const { level, rate, end } = tail;
+  const by = (dl: number, dr: number): number =>
+    of(decayMoments(level * (1 + dl), rate * (1 + dr), end)) - of(decayMoments(level * (1 - dl), rate * (1 - dr), end));
+  const step = 1e-4;
+  return [by(step, 0) / (2 * step * level), by(0, step) / (2 * step * rate)];
+}
+
 /**
- * How far a figure of the tail's raw moments may be off, one standard error, from the two errors of its line.
- * @param of a figure as a function of the raw moments; linear enough over one standard error
+ * How far a figure of the tail's raw moments may be off, one standard error, from the two errors of its line, or by what
+ * may come after a curve that counts as closed.
+ * @param end the last time
+ * @param of  a figure as a function of the raw moments; linear enough over one standard error
  */
-export function tailError(tail: Tail, of: (raw: readonly [number, number, number, number]) => number): number {
-  if (tail.is !== "exponential") return 0;
+export function tailError(tail: Tail, end: number, of: (raw: RawFour) => number): number {
   const here = of(tailMoments(tail));
+  if (tail.is === "closed") return Math.abs(of(decayMoments(tail.level, 1 / tail.horizon, end)) - here);
+  if (tail.is !== "exponential" || tail.joint) return 0;
   const higher = of(tailMoments({ ...tail, level: tail.level * Math.exp(tail.centreError) }));
   const slower = tail.level * Math.exp(tail.rateError * (tail.end - tail.middle));
   const flatter = of(tailMoments({ ...tail, level: slower, rate: tail.rate - tail.rateError }));

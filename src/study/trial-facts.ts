@@ -1,8 +1,11 @@
 import { compile } from "../compile/compile.js";
+import type { Plant } from "../compile/plant.js";
 import type { MomentsOptions } from "../data/moments.js";
+import type { WayOut } from "../data/result.js";
 import type { Network } from "../model/network.js";
 import type { Study } from "../model/study.js";
 import type { Trial } from "../model/trial.js";
+import { dimensions } from "../units/dimension.js";
 
 /** What the log alone cannot know: flow and volume of the vessel on the day, from the first rival that can tell. */
 export function momentsFacts(study: Study, trial: Trial): MomentsOptions {
@@ -36,5 +39,25 @@ export function vesselFacts(network: Network, trial: Trial): MomentsOptions {
     },
     throughflow: known(throughflow, relative),
     volume: known(plant.volume.total, volumeSd / plant.volume.total),
+    ...placesOf(plant),
   };
+}
+
+/** Feeds, ways out and the unit of volumes of a plant, for moments. */
+export function placesOf(plant: Plant): Pick<MomentsOptions, "volumeUnit" | "feeds" | "wayOut"> {
+  return {
+    volumeUnit: plant.network.units.unitFor(dimensions.volume),
+    feeds: new Map(plant.feeds.map((f) => [f.name, f.flow])),
+    wayOut: (at) => wayOutOf(plant, at),
+  };
+}
+
+/** A place is a way out if it is an outlet, or the one body that an outlet takes all its liquid from. */
+function wayOutOf(plant: Plant, at: string): WayOut {
+  const whole = plant.feeds.reduce((sum, f) => sum + f.flow, 0);
+  const outlets = plant.outlets.filter((o) => o.flow > 1e-12 * whole);
+  const into = (name: string) => plant.streams.filter((s) => s.to === name && s.flow > 0);
+  const own = outlets.find((o) => o.name === at || into(o.name).every((s) => s.from === at));
+  const others = outlets.filter((o) => o !== own).map((o) => o.name);
+  return { isOutlet: own !== undefined, share: own ? own.flow / whole : 0, others };
 }

@@ -92,7 +92,7 @@ describe("declared cleaning", () => {
       reading: "line: {delay: 0.5 min}",
     });
     same(r, 6);
-    expect(r.steps.map((s) => s.name)).toEqual(["raw", "time zero", "line delay"]);
+    expect(r.steps.map((s) => s.name)).toEqual(["raw", "time zero", "line delay", "front and tail"]);
     expect(r.steps[0].mean).toBeCloseTo((clean.mean.value ?? 0) + 7.5 * min, 6);
     expect(r.steps[1].mean).toBeCloseTo((clean.mean.value ?? 0) + 0.5 * min, 6);
   });
@@ -154,7 +154,7 @@ describe("declared cleaning", () => {
       reading: "leave-out: [{from: 15.005 min, to: 15.995 min, because: air in the cell}]",
     });
     same(r, 1);
-    expect(r.steps.map((s) => s.name)).toEqual(["raw", "leave-out"]);
+    expect(r.steps.map((s) => s.name)).toEqual(["raw", "leave-out", "front and tail"]);
   });
 });
 

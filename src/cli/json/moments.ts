@@ -17,12 +17,14 @@ function readingJson(r: ReadingMoments): object {
     at: r.at,
     area: figureJson(r.area),
     recovery: figureJson(r.recovery),
+    ...(r.expected === undefined ? {} : { expectedRecovery: r.expected }),
     mean: figureJson(r.mean),
     variance: figureJson(r.variance),
     skewness: figureJson(r.skewness),
     t10: figureJson(r.t10),
     t50: figureJson(r.t50),
     t90: figureJson(r.t90),
+    percentilesApproximate: r.percentilesShifted,
     indices: Object.fromEntries(Object.entries(r.indices).map(([name, f]) => [camel(name), figureJson(f)])),
     tail: tailJson(r),
     noise: { sd: figureJson(r.noise.sd), from: r.noise.from },
@@ -49,13 +51,14 @@ function tailJson({ tail, tailShare, timeUnit, unit }: ReadingMoments): object {
   };
 }
 
-function stepJson({ name, unit, area, mean, variance, t10 }: CleanStep, time: Unit): object {
+function stepJson({ name, unit, area, mean, variance, t10, approximate }: CleanStep, time: Unit): object {
   return {
     name,
     area: quantity(area, productUnit(`${unit.name} ${time.name}`, unit, time)),
     mean: quantity(mean, time),
     variance: quantity(variance, squared(time)),
     t10: quantity(t10, time),
+    ...(approximate ? { approximate: true } : {}),
   };
 }
 

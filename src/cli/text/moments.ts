@@ -36,7 +36,10 @@ function readingText(r: ReadingMoments): string {
   ];
   const rows = main
     .filter(([, f]) => f.value !== undefined)
-    .map(([name, f]): [string, string] => [name, figureText(name, f)]);
+    .map(([name, f]): [string, string] => [
+      name,
+      `${r.percentilesShifted && /^t\d\d$/.test(name) ? "≈ " : ""}${figureText(name, f)}${name === "recovery" ? expectedText(r) : ""}`,
+    ]);
   const share =
     r.tail.is === "exponential"
       ? `, ${percent(r.tailShare.area)} of the area and ${percent(r.tailShare.variance)} of the variance`
@@ -47,6 +50,9 @@ function readingText(r: ReadingMoments): string {
     r.steps.length > 1 ? stepsTable(r) : "",
   );
 }
+
+const expectedText = ({ expected }: ReadingMoments): string =>
+  expected === undefined ? "" : `, where ${percent(expected)} of the flow leaves`;
 
 function figureText(name: string, f: Figure): string {
   if (f.value === undefined) return f.why;
@@ -74,7 +80,7 @@ function stepsTable({ steps, timeUnit: time }: ReadingMoments): string {
       `${formatNumber(s.area / s.unit.factor / time.factor)} ${s.unit.name} ${time.name}`,
       number(s.mean, time),
       number(s.variance, squared(time)),
-      number(s.t10, time),
+      `${s.approximate && s.t10 !== undefined ? "≈ " : ""}${number(s.t10, time)}`,
     ]),
   );
 }
