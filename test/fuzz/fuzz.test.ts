@@ -31,3 +31,12 @@ test("an input can be made again from its number", () => {
   const texts = new Set(Array.from({ length: 50 }, (_, n) => new TextDecoder().decode(inputOf(corpus, 3, n).bytes)));
   expect(texts.size).toBeGreaterThan(45);
 });
+
+test.each(["-3", "x", "2.5", "1e9"])("found by fuzzing: a part repeated %s times", async (times) => {
+  const corpus = corpusOf(join(import.meta.dirname, "../.."));
+  const path = "networks/reuse/train.yaml";
+  const text = new TextDecoder().decode(corpus.get(path));
+  expect(text).toMatch(/repeat: \d+/);
+  const bytes = new TextEncoder().encode(text.replace(/repeat: \d+/, `repeat: ${times}`));
+  expect(await faultOf({ path, bytes }, corpus)).toBeUndefined();
+});
