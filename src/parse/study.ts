@@ -65,8 +65,15 @@ interface NamedFile {
 
 function filesUnder(tree: MapNode, key: string, files: Files, report: Report): NamedFile[] {
   const named = itemsOf(child(tree, key)).filter((item): item is ScalarNode => item.type === "scalar");
+  const seen = new Map<string, ScalarNode>();
   return named.flatMap((item) => {
     const file = beside(item.at.source.path, item.text);
+    const earlier = seen.get(file);
+    seen.set(file, earlier ?? item);
+    if (earlier) {
+      report("named-twice", item.at, { path: item.text, key }, { at: earlier.at, says: "named first here" });
+      return [];
+    }
     const content = openText(file, item, files, report);
     return content === undefined ? [] : [{ file, content }];
   });

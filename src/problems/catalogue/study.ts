@@ -12,4 +12,9 @@ export const studyEntries = {
     says: ({ title }) => `'${title}' is a change to a vessel, not a vessel`,
     fix: "name the network that it changes in its place; a study lists changes under `changes`",
   }),
+  "named-twice": entry<{ path: string; key: string }>({
+    severity: "error",
+    says: ({ path, key }) => `'${path}' stands twice under \`${key}\``,
+    fix: "name it once: twice would count it twice",
+  }),
 } as const;
