@@ -31,6 +31,10 @@ export interface Block {
   readonly delay: (flow: number) => number;
   /** G(s) e^(s delay), without the overflow that the product would have. */
   readonly undelayed: (s: Complex, flow: number) => Complex;
+  /** What of an instant amount leaves after `delay` all at once: the limit of `undelayed` for large s. */
+  readonly direct: (flow: number) => number;
+  /** `undelayed` less `direct`, to full relative accuracy. */
+  readonly spread: (s: Complex, flow: number) => Complex;
   /** Coefficients of G in powers of s, orders 0 to 3; infinite from the order on at which the moments are. */
   readonly series: (flow: number) => Taylor;
 }
@@ -61,6 +65,7 @@ export function formulaBlock({ response, ...body }: Body): Block {
     transfer,
     delay: () => 0,
     undelayed: transfer,
+    ...(body.volume > 0 || !body.pockets ? { direct: () => 0, spread: transfer } : pastPockets(response, body.pockets)),
     series: (flow) => {
       const s = variable(orders);
       return response(series.add(series.scale(s, volume / flow), pocketTime(s, series, pockets, flow)), series);
@@ -69,6 +74,29 @@ export function formulaBlock({ response, ...body }: Body): Block {
 }
 
 const series = taylor(orders);
+
+/** Below this, a difference of two values is told by the slopes instead. */
+const close = 1e-4;
+
+/** The undispersed part, and the rest, of a response to pockets alone: tracer may pass by all of them. */
+export function pastPockets(
+  response: Body["response"],
+  { volume, exchange }: Pockets,
+): Pick<Block, "direct" | "spread"> {
+  const { of, add, subtract, multiply, divide, scale, size } = complex;
+  return {
+    direct: (flow) => response(of(exchange / flow), complex).re,
+    spread(s, flow) {
+      const most = exchange / flow;
+      const short = divide(of(most * exchange), add(of(exchange), scale(s, volume))); // most - pocketTime
+      if (size(short) > close)
+        return subtract(response(subtract(of(most), short), complex), response(of(most), complex));
+      const [, first, second, third] = response(series.add(series.of(most), variable(orders)), series);
+      const inner = subtract(of(second), scale(short, third));
+      return multiply(scale(short, -1), subtract(of(first), multiply(short, inner)));
+    },
+  };
+}
 
 /** What pockets add to s V/Q. */
 export function pocketTime<T>(s: T, algebra: Algebra<T>, pockets: Pockets | undefined, flow: number): T {

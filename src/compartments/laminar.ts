@@ -39,6 +39,8 @@ function laminarTube(volume: number): Block {
     pockets: undefined,
     delay: (flow) => volume / flow / 2,
     undelayed,
+    direct: () => 0,
+    spread: undelayed,
     transfer: (s, flow) => complex.multiply(complex.exp(complex.scale(s, -volume / flow / 2)), undelayed(s, flow)),
     series: (flow) => Float64Array.of(1, -volume / flow, Number.POSITIVE_INFINITY, Number.NEGATIVE_INFINITY),
   };

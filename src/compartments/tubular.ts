@@ -1,6 +1,7 @@
+import type { Algebra } from "../numerics/algebra.js";
 import { complex } from "../numerics/complex.js";
 import { tubularBody } from "../svg/bodies.js";
-import { type Block, formulaBlock, type Pockets, pocketTime } from "./block.js";
+import { type Block, formulaBlock, type Pockets, pastPockets, pocketTime } from "./block.js";
 import type { CompartmentKind, Ports } from "./kind.js";
 import { heldIn, pocketsOf, stagnantKey, withPockets } from "./stagnant.js";
 
@@ -37,15 +38,17 @@ export const tubular: CompartmentKind = {
 
 /** Plug flow past pockets: a delay V/Q, and behind it what the pockets held back. */
 function pocketedTube(volume: number, pockets: Pockets): Block {
+  const response = <T>(z: T, { exp, scale }: Algebra<T>): T => exp(scale(z, -1));
   return {
     ...formulaBlock({
       is: "plug flow past stagnant pockets",
       mixing: { is: "plug" },
       volume,
       pockets,
-      response: (z, { exp, scale }) => exp(scale(z, -1)),
+      response,
     }),
     delay: (flow) => volume / flow,
-    undelayed: (s, flow) => complex.exp(complex.scale(pocketTime(s, complex, pockets, flow), -1)),
+    undelayed: (s, flow) => response(pocketTime(s, complex, pockets, flow), complex),
+    ...pastPockets(response, pockets),
   };
 }

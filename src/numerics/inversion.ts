@@ -4,6 +4,11 @@ import { type Fraction, fractionAt, fractionOf } from "./dehoog.js";
 export interface Transforms {
   readonly count: number;
   at(sRe: number, sIm: number, re: Float64Array, im: Float64Array): void;
+  /**
+   * Where what goes round in circles may hide resonances: no less than the magnitudes at `damping` left of the imaginary
+   * axis, at the height `sIm` and above. False where there is no bound. Without this, nothing is hidden.
+   */
+  bound?(damping: number, sIm: number, sizes: Float64Array): boolean;
 }
 
 /** A transform wanted back at some times. */
@@ -28,8 +33,10 @@ export interface Inverted {
 
 const agreement = 1e-10;
 /** Terms that the continued fraction takes; those before it, if any, are summed as they are. */
-const tail = 81;
+const tail = 61;
 const ratio = 4;
+/** Damping times the earliest time of a window, tried for a bound. */
+const dampings = [35, 20, 10, 0] as const;
 /** e^-2cT: how much of the curve a period later is seen. */
 const alias = 1e-13;
 
@@ -37,12 +44,20 @@ const alias = 1e-13;
  * Many Laplace transforms, smooth in time after 0, back at many times, all from the same nodes: Fourier series on the
  * Bromwich line, one line per window of times; a window ends at `unit` times a power of 4, whatever times are asked. The
  * series is summed as it is for its first terms and by continued fraction beyond; more terms are taken until two counts
- * agree to 1e-10 of the scale. A transform that decays along the line is thus summed plainly.
+ * agree to 1e-10 of the scale. A transform that decays along the line is thus summed plainly. Two counts would agree on a
+ * wrong curve where resonances stand beyond both; so it is also asked that what lies beyond has died out by then.
  * @param unit  time in which the windows are counted
  * @param most  nodes per window at most
+ * @param whole give up as soon as one does not settle; the values are then of no use
  * @see F.R. de Hoog, J.H. Knight, A.N. Stokes, SIAM J. Sci. Stat. Comput. 3 (1982) 357-366
  */
-export function invert(transforms: Transforms, wanted: readonly Wanted[], unit: number, most = 24_000): Inverted {
+export function invert(
+  transforms: Transforms,
+  wanted: readonly Wanted[],
+  unit: number,
+  most = 24_000,
+  whole = false,
+): Inverted {
   const values = wanted.map(({ times }) => new Float64Array(times.length));
   const windows = new Map<number, Map<number, number[]>>(); // window -> wanted -> indices of times
   wanted.forEach(({ times }, w) => {
@@ -60,18 +75,20 @@ export function invert(transforms: Transforms, wanted: readonly Wanted[], unit: 
   for (const [power, rows] of [...windows].sort(([a], [b]) => b - a)) {
     const window = new Window(transforms, unit * ratio ** power);
     let open = [...rows].map(([w, at]): Open => ({ w, at, last: undefined, off: Number.POSITIVE_INFINITY }));
-    for (let head = 0; open.length > 0; head = 2 * head + 40) {
+    for (let head = 0; open.length > 0; head = 2 * head + (tail - 1) / 2) {
       if (head + tail > most) break;
       window.extend(head + tail);
+      window.limit(head + tail);
       for (const o of open) {
         const { transform, power: divided, times, scale, group } = wanted[o.w];
         const now = window.values(transform, divided, head, times, o.at);
-        const peak = now.reduce((m, v) => Math.max(m, Math.abs(v)), found.get(group) ?? 0);
-        found.set(group, peak);
+        const peak = now.reduce((m, v) => Math.max(m, Math.abs(v)), Math.max(scale, found.get(group) ?? 0));
         const { last } = o;
         if (last) {
-          const off = now.reduce((m, v, i) => Math.max(m, differ(v, last[i])), 0);
-          o.off = off / Math.max(scale, peak);
+          const off = now.reduce((m, v, i) => Math.max(m, differ(v, last[i])), 0) / peak;
+          // the bound is a coarse one and costs something: asked for where all else is well
+          o.off = off <= agreement ? Math.max(off, window.hidden(transform, divided) > agreement * peak ? 1 : 0) : off;
+          if (o.off <= agreement) found.set(group, peak);
         }
         o.last = now;
       }
@@ -84,6 +101,7 @@ export function invert(transforms: Transforms, wanted: readonly Wanted[], unit: 
         return false;
       });
     }
+    if (whole && open.length > 0) return { values, difference: Number.POSITIVE_INFINITY, settled: false };
     for (const { last, off, w, at } of open) {
       difference = Math.max(difference, off);
       at.forEach((i, k) => {
@@ -105,9 +123,12 @@ const differ = (a: number, b: number): number => (Number.isNaN(a - b) ? Number.P
 
 /** The nodes of one window and the transforms there. */
 class Window {
+  /** Magnitudes beyond the nodes, by damping; made when asked for. */
+  private beyond: (Float64Array | undefined)[] | undefined;
   private readonly half: number;
   private readonly abscissa: number;
   private count = 0;
+  private reach = 0;
   private re: Float64Array[];
   private im: Float64Array[];
 
@@ -134,6 +155,28 @@ class Window {
         this.im[j][this.count] = im[j];
       }
     }
+  }
+
+  /** How far the nodes reach, for `hidden`. */
+  limit(count: number): void {
+    if (count > this.reach) this.beyond = undefined;
+    this.reach = count;
+  }
+
+  /** What may at most be seen in this window of what lies beyond the nodes. */
+  hidden(transform: number, power: number): number {
+    const { transforms } = this;
+    if (!transforms.bound) return 0;
+    const height = (this.reach * Math.PI) / this.half;
+    const earliest = this.half / (2 * ratio);
+    this.beyond ??= dampings.map((d) => {
+      const sizes = new Float64Array(transforms.count);
+      return transforms.bound?.(d / earliest, height, sizes) ? sizes : undefined;
+    });
+    return dampings.reduce((least, d, i) => {
+      const sizes = this.beyond?.[i];
+      return sizes ? Math.min(least, 3 * sizes[transform] * height ** (1 - power) * Math.exp(-d)) : least;
+    }, Number.POSITIVE_INFINITY);
   }
 
   values(transform: number, power: number, head: number, times: Float64Array, at: readonly number[]): Float64Array {

@@ -17,8 +17,6 @@ export interface Passing {
 
 /** A tube shorter than this part of the mean time is a junction. */
 const shortest = 1e-9;
-/** Far out on the real axis, in units of 1 / (volume / flow). */
-const far = 1e40;
 const none = complex.of(0);
 
 /** @param meanTime s, of the plant */
@@ -42,20 +40,17 @@ function passing(node: PlantNode, shortestDelay: number): Passing {
       return { delay, direct: 1, spread: () => none, whole };
     }
     case Part.Block:
-      return blockPassing(block as Block, volume, inflow, shortestDelay);
+      return blockPassing(block as Block, inflow, shortestDelay);
   }
 }
 
-function blockPassing(block: Block, volume: number, inflow: number, shortestDelay: number): Passing {
+function blockPassing(block: Block, inflow: number, shortestDelay: number): Passing {
   const delay = block.delay(inflow);
   const late = delay >= shortestDelay;
-  const limit = block.undelayed(complex.of((far * inflow) / volume), inflow).re;
-  const direct = limit > 1e-30 ? limit : 0;
-  const undelayed = (s: Complex): Complex => block.undelayed(s, inflow);
   return {
     delay: late ? delay : 0,
-    direct,
-    spread: direct > 0 ? (s) => complex.subtract(undelayed(s), complex.of(direct)) : undelayed,
-    whole: late ? (s) => block.transfer(s, inflow) : undelayed,
+    direct: block.direct(inflow),
+    spread: (s) => block.spread(s, inflow),
+    whole: (s) => (late ? block.transfer(s, inflow) : block.undelayed(s, inflow)),
   };
 }

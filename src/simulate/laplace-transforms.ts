@@ -1,6 +1,6 @@
 import { Part, type Plant } from "../compile/plant.js";
 import { type Complex, complex } from "../numerics/complex.js";
-import { adjacency } from "../numerics/graph.js";
+import { adjacency, stronglyConnected } from "../numerics/graph.js";
 import type { Transforms } from "../numerics/inversion.js";
 import { NodeEquations } from "../transfer/node-equations.js";
 import type { Passing } from "./laplace-gain.js";
@@ -63,71 +63,99 @@ export function transformsOf(
     }
     return complex.add(cells, complex.divide(between, s));
   };
-  const read = (s: Complex, copy: number, re: Float64Array, im: Float64Array): void => {
+  /** Under `sizes` what is held is left out: the balance itself tells. */
+  const read = (s: Complex, copy: number, re: Float64Array, im: Float64Array, of: Of): void => {
     for (const p of wantedOf[copy]) {
       const { node, lag } = parts[p];
       let value: Complex;
-      if (node === undefined) value = held(s, copies[copy]);
+      if (of === sizeOf && (node === undefined || (copy < copies.length && !roundInCopies))) value = complex.of(0);
+      else if (node === undefined) value = held(s, copies[copy]);
       else if (lag > 0) {
         const seen = { re: cRe[node] + (copies[copy]?.direct[node] ?? 0), im: cIm[node] };
-        value = complex.divide(seen, { re: 1 + lag * s.re, im: lag * s.im });
+        value = complex.multiply(seen, of(complex.divide(complex.of(1), { re: 1 + lag * s.re, im: lag * s.im })));
       } else value = { re: cRe[node], im: cIm[node] };
       re[p] = value.re;
       im[p] = value.im;
     }
   };
+  /** With `sizes` for values: magnitudes, summed as if all pulled one way. False where the circles have no bound then. */
+  const solve = (s: Complex, re: Float64Array, im: Float64Array, of: Of): boolean => {
+    for (let i = 0; i < n; i++) {
+      const g = of(passing[i].spread(s));
+      spreadRe[i] = g.re;
+      spreadIm[i] = g.im;
+      cut.gainRe[i] = passing[i].delay > 0 ? 0 : g.re + passing[i].direct;
+      cut.gainIm[i] = passing[i].delay > 0 ? 0 : g.im;
+    }
+    cut.factor();
+    slotRe.fill(0);
+    slotIm.fill(0);
+    for (let c = 0; c <= Math.min(last, copies.length - 1) || (whole && c < copies.length); c++) {
+      const { seeds, exits, enteringDirect } = copies[c];
+      for (let i = 0; i < n; i++) {
+        const here = passing[i].delay > 0 ? 0 : enteringDirect[i];
+        cRe[i] = spreadRe[i] * here;
+        cIm[i] = spreadIm[i] * here;
+      }
+      for (const { node, slot } of seeds) {
+        cRe[node] += slotRe[slot];
+        cIm[node] += slotIm[slot];
+      }
+      cut.solve(cRe, cIm);
+      if (of === sizeOf && !cRe.every((x) => x >= 0)) return false;
+      read(s, c, re, im, of);
+      for (const { node, slot } of exits) {
+        if (slot === undefined) continue;
+        const mean = entering(node);
+        const { direct } = passing[node];
+        const [gRe, gIm] = [spreadRe[node], spreadIm[node]];
+        slotRe[slot] += (gRe + direct) * mean.re - gIm * mean.im + gRe * enteringDirect[node];
+        slotIm[slot] += (gRe + direct) * mean.im + gIm * mean.re + gIm * enteringDirect[node];
+      }
+    }
+    if (!whole) return true;
+    for (let i = 0; i < n; i++) {
+      const g = of(passing[i].whole(s));
+      whole.gainRe[i] = g.re;
+      whole.gainIm[i] = g.im;
+    }
+    whole.factor();
+    cRe.fill(0);
+    cIm.fill(0);
+    for (const { node, slot, delay } of rest) {
+      const turn = of(complex.exp(complex.scale(s, rest[0].delay - delay)));
+      cRe[node] += slotRe[slot] * turn.re - slotIm[slot] * turn.im;
+      cIm[node] += slotRe[slot] * turn.im + slotIm[slot] * turn.re;
+    }
+    whole.solve(cRe, cIm);
+    if (of === sizeOf && !cRe.every((x) => x >= 0)) return false;
+    read(s, copies.length, re, im, of);
+    return true;
+  };
+  const unused = new Float64Array(parts.length);
+  const roundInCopies = stillRound(plant, passing);
+  const round = parts.some(({ copy }) => copy === copies.length || roundInCopies);
   return {
     count: parts.length,
     at(sRe, sIm, re, im) {
-      const s = { re: sRe, im: sIm };
-      for (let i = 0; i < n; i++) {
-        const g = passing[i].spread(s);
-        spreadRe[i] = g.re;
-        spreadIm[i] = g.im;
-        cut.gainRe[i] = passing[i].delay > 0 ? 0 : g.re + passing[i].direct;
-        cut.gainIm[i] = passing[i].delay > 0 ? 0 : g.im;
-      }
-      cut.factor();
-      slotRe.fill(0);
-      slotIm.fill(0);
-      for (let c = 0; c <= Math.min(last, copies.length - 1) || (whole && c < copies.length); c++) {
-        const { seeds, exits, enteringDirect } = copies[c];
-        for (let i = 0; i < n; i++) {
-          const here = passing[i].delay > 0 ? 0 : enteringDirect[i];
-          cRe[i] = spreadRe[i] * here;
-          cIm[i] = spreadIm[i] * here;
-        }
-        for (const { node, slot } of seeds) {
-          cRe[node] += slotRe[slot];
-          cIm[node] += slotIm[slot];
-        }
-        cut.solve(cRe, cIm);
-        read(s, c, re, im);
-        for (const { node, slot } of exits) {
-          if (slot === undefined) continue;
-          const mean = entering(node);
-          const { direct } = passing[node];
-          const [gRe, gIm] = [spreadRe[node], spreadIm[node]];
-          slotRe[slot] += (gRe + direct) * mean.re - gIm * mean.im + gRe * enteringDirect[node];
-          slotIm[slot] += (gRe + direct) * mean.im + gIm * mean.re + gIm * enteringDirect[node];
-        }
-      }
-      if (!whole) return;
-      for (let i = 0; i < n; i++) {
-        const g = passing[i].whole(s);
-        whole.gainRe[i] = g.re;
-        whole.gainIm[i] = g.im;
-      }
-      whole.factor();
-      cRe.fill(0);
-      cIm.fill(0);
-      for (const { node, slot, delay } of rest) {
-        const turn = complex.exp(complex.scale(s, rest[0].delay - delay));
-        cRe[node] += slotRe[slot] * turn.re - slotIm[slot] * turn.im;
-        cIm[node] += slotRe[slot] * turn.im + slotIm[slot] * turn.re;
-      }
-      whole.solve(cRe, cIm);
-      read(s, copies.length, re, im);
+      solve({ re: sRe, im: sIm }, re, im, asItIs);
     },
+    ...(round
+      ? {
+          bound: (damping: number, sIm: number, sizes: Float64Array): boolean =>
+            solve({ re: -damping, im: sIm }, sizes, unused, sizeOf),
+        }
+      : {}),
   };
 }
+
+/** Are there circles left where delayed nodes are cut open? */
+function stillRound({ nodes, from, to }: Plant, passing: readonly Passing[]): boolean {
+  const left = [...from.keys()].filter((k) => !(passing[to[k]].delay > 0));
+  const graph = { size: nodes.length, from: left.map((k) => from[k]), to: left.map((k) => to[k]) };
+  return left.some((k) => from[k] === to[k]) || stronglyConnected(graph).some((group) => group.length > 1);
+}
+
+type Of = (g: Complex) => Complex;
+const asItIs: Of = (g) => g;
+const sizeOf: Of = (g) => complex.of(complex.size(g));

@@ -1,6 +1,7 @@
 import { requireCarried } from "../compile/carried.js";
 import type { Plant } from "../compile/plant.js";
 import { invert, type Wanted } from "../numerics/inversion.js";
+import { SteadyEquations } from "../transfer/steady-equations.js";
 import { type Passing, passings } from "./laplace-gain.js";
 import { type Passes, passes } from "./laplace-passes.js";
 import { type Channel, transformsOf } from "./laplace-transforms.js";
@@ -9,9 +10,13 @@ import type { Balance, Seen } from "./respond.js";
 import type { NodeLook, TracerWay, Tracing } from "./tracing.js";
 
 /** Copies taken out of a loop before its rest is tried in one piece; then four times as many, and so on. */
-const firstBudget = 32;
-/** Nodes per window in such a trial. */
-const trialNodes = 2_600;
+const firstBudget = 1;
+/** Nodes per window in such a trial, and nodes times copies. */
+const trialNodes = 6_000;
+const trialWork = 1_500_000;
+/** The same where there is no other way. */
+const mostNodes = 400_000;
+const mostWork = 12_000_000;
 /** In mean times: what is asked at the very moment of a jump is the value this soon after it. */
 const soon = 4 ** -50;
 
@@ -42,6 +47,8 @@ class LaplaceTracing implements Tracing {
   private readonly passing: readonly Passing[];
   private sorted: Passes;
   private budget = firstBudget;
+  /** Integral over all time of what leaves a node. */
+  private readonly doses: Float64Array;
 
   constructor(
     private readonly plant: Plant,
@@ -51,6 +58,10 @@ class LaplaceTracing implements Tracing {
   ) {
     this.passing = passings(plant, unit);
     this.sorted = this.sort();
+    this.doses = new Float64Array(plant.nodes.length);
+    const { inflow } = plant.nodes[entry];
+    if (inflow > 0) this.doses[entry] = 1 / inflow;
+    new SteadyEquations(plant).solve(this.doses);
   }
 
   get truncated(): boolean {
@@ -89,33 +100,33 @@ class LaplaceTracing implements Tracing {
   }
 
   private curves(drive: Drive, curves: readonly Curve[]): { seen: Seen[]; stopped: string | undefined } {
-    for (;;) {
-      const { seen, difference, settled } = this.attempt(drive, curves);
-      if (settled) return { seen, stopped: undefined };
-      if (this.sorted.rest.length === 0) {
-        const off = difference.toExponential(1);
-        return { seen, stopped: `the inversion did not settle: two node counts differ by ${off} of the peak` };
-      }
-      this.budget *= 4;
+    const start = (): Seen[] =>
+      curves.map(({ times }) => ({ value: new Float64Array(times.length), integral: new Float64Array(times.length) }));
+    let seen = start();
+    while (this.sorted.rest.length > 0 && !this.add(seen, drive, curves, true).settled) {
+      this.budget = 4 * Math.max(this.budget, this.sorted.copies.length);
       this.sorted = this.sort();
+      seen = start();
     }
+    const { settled, difference } = this.add(seen, drive, curves, false);
+    if (settled) return { seen, stopped: undefined };
+    const off = difference.toExponential(1);
+    return { seen, stopped: `the inversion did not settle: two node counts differ by ${off} of the peak` };
   }
 
-  private attempt(drive: Drive, curves: readonly Curve[]) {
+  /** Adds what the copies make of a drive, or the rest behind them; the rest as a trial. */
+  private add(seen: readonly Seen[], drive: Drive, curves: readonly Curve[], behind: boolean) {
     const { plant, unit } = this;
     const { copies, rest } = this.sorted;
     const impulses = impulsesOf(drive);
     const channels: Channel[] = [];
     const wanted: Wanted[] = [];
     const add: ((values: Float64Array) => void)[] = [];
-    const seen = curves.map(
-      ({ times }): Seen => ({ value: new Float64Array(times.length), integral: new Float64Array(times.length) }),
-    );
     curves.forEach(({ node, lag, times, integral }, c) => {
-      const dose =
-        node === undefined ? unit : copies.reduce((sum, { smooth, direct }) => sum + smooth[node] + direct[node], 0);
-      const delays = [...copies.map(({ delay }) => delay), ...rest.slice(0, 1).map(({ delay }) => delay)];
-      delays.forEach((delay, copy) => {
+      const dose = node === undefined ? unit : this.doses[node];
+      const parts = behind ? [copies.length] : copies.keys();
+      for (const copy of parts) {
+        const { delay } = copies[copy] ?? rest[0];
         const direct = node === undefined ? 0 : (copies[copy]?.direct[node] ?? 0);
         const smooth =
           node === undefined || copy === copies.length || copies[copy].smooth[node] > 0 || (lag > 0 && direct > 0);
@@ -146,14 +157,17 @@ class LaplaceTracing implements Tracing {
           }
         }
         channels.push({ copy, node, lag });
-      });
+      }
     });
     const transforms = transformsOf(plant, this.passing, this.sorted, channels);
-    const { values, difference, settled } = invert(transforms, wanted, unit, rest.length > 0 ? trialNodes : undefined);
+    const most = behind
+      ? Math.max(600, Math.min(trialNodes, trialWork / copies.length))
+      : Math.max(6_000, Math.min(mostNodes, mostWork / (copies.length * plant.nodes.length)));
+    const { values, difference, settled } = invert(transforms, wanted, unit, most, behind);
     values.forEach((v, w) => {
       add[w](v);
     });
-    return { seen, difference, settled };
+    return { difference, settled };
   }
 }
 
