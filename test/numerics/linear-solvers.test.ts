@@ -73,7 +73,7 @@ const all: Record<string, (p: Pattern) => LinearSolver> = {
   bicgstab: (p) => krylovSolver(p),
   gmres: (p) => krylovSolver(p, { method: "gmres" }),
 };
-/** Backward error row by row: rounding of n steps for elimination; Krylov methods promise the residual as a whole only. */
+/** Backward error: rounding of n steps for elimination; what an iteration was asked for, and the spread of the rates, for Krylov. */
 const within = (name: string, n: number): number =>
   name === "gmres" || name === "bicgstab" ? 1e-9 : (8 + 4 * n) * Number.EPSILON;
 
@@ -91,18 +91,19 @@ describe.each(Object.entries(all))("%s on balances of flow networks", (name, mak
         const solver = make(a);
         const random = uniformSource(seed + 1);
         for (let round = 0; round < 3; round++) {
-          const value = a.value.map((v) => (round === 0 ? v : v * (1 + random()) + (round === 2 && v > 0 ? 100 : 0)));
-          if (round === 2) for (let k = 0; k < value.length; k += 2) value[k] *= -1; // no M-matrix any more
+          // Once as it is, once with more on the diagonal, once with signs that make it no M-matrix.
+          const value = a.value.map((v) => (round === 0 || v < 0 ? v : v * (1 + random()) + (round === 2 ? 100 : 0)));
+          if (round === 2) for (let k = 0; k < value.length; k += 2) value[k] *= -1;
           const kept = value.slice();
           if (!solver.factor(value)) throw new Error("not singular");
           expect(value).toEqual(kept);
           const b = Float64Array.from({ length: n }, () => random());
           const x = b.slice();
           expect(solver.solve(x)).toBe(true);
-          // Only for M-matrices is every row good by itself.
+          // Only with pivots on the diagonal of an M-matrix is every row good by itself.
           const rowByRow = sparseBackwardError({ ...a, value }, x, b);
           const whole = backwardError(toDense({ ...a, value }), n, x, b);
-          expect(round < 2 ? rowByRow : whole).toBeLessThan(within(name, n));
+          expect(round < 2 && name.endsWith("sparse") ? rowByRow : whole).toBeLessThan(within(name, n));
         }
       }),
       { numRuns: 40 },
