@@ -1,4 +1,6 @@
 import { nearest } from "../text/nearest.js";
+import { formatNumber } from "../units/format.js";
+import { inUnit } from "../units/unit.js";
 import type { Expression, Operator } from "./ast.js";
 import { type Fault, isFault } from "./fault.js";
 import { functions } from "./functions.js";
@@ -51,12 +53,25 @@ function readSigned(reader: Reader): Read {
 
 /** Powers bind from the right, and their exponent may carry a minus: 2^-1, 2^3^2 = 2^9. */
 function readPower(reader: Reader): Read {
+  const first = reader.peek();
   const base = readAtom(reader);
   if (isFault(base) || !reader.take("^")) return base;
   if (++reader.depth > deepest) return tooDeep(reader.peek());
   const exponent = readSigned(reader);
   reader.depth--;
-  return isFault(exponent) ? exponent : join("^", base, exponent);
+  if (isFault(exponent)) return exponent;
+  return first.type === "number" && first.unit.name !== "" ? unitOrValue(first, exponent) : join("^", base, exponent);
+}
+
+/** `2 m ^ 3`: 2 m3 to one reader, 8 m3 to the next. */
+function unitOrValue({ value, unit, from }: Extract<Token, { type: "number" }>, exponent: Expression): Fault {
+  const { to } = exponent.at;
+  const power = exponent.type === "number" && exponent.unit.name === "" ? formatNumber(exponent.value, 12) : undefined;
+  const number = formatNumber(inUnit(value, unit), 12);
+  const why = `\`^\` after a space may raise the value or only its unit ${unit.name}`;
+  const raised = `for the value write \`(${number} ${unit.name})^${power ?? "..."}\``;
+  const whole = power === undefined ? "" : `, for the unit \`${number} ${unit.name}^${power}\` without a space`;
+  return { code: "bad-power", from, to, data: { why, fix: raised + whole } };
 }
 
 function readAtom(reader: Reader): Read {

@@ -43,6 +43,8 @@ export function scan(text: string): readonly Token[] | Fault {
     }
     const infinite = match(/\.(?:inf|nan)\b/iy, text, at);
     if (infinite) return badNumber(text, at, infinite.to, "is no finite number", "write a number");
+    const mixed = match(/\+[-−]|[-−]\+/y, text, at);
+    if (mixed) return mixedSigns(mixed.text, at, mixed.to);
     const sign = match(signs, text, at);
     if (!sign) return strange(text, at);
     if (sign.text === "(") brackets.push(tokens.at(-1)?.type === "name");
@@ -147,6 +149,17 @@ export function unitFault(fault: UnitFault, unit: string, shift: number): Fault 
     return { code: "bad-unit", from: shift, to: shift + Math.max(1, unit.length), data: { unit } };
   return { code: "unknown-unit", from, to, data: { part: fault.part, unit, nearest: fault.nearest } };
 }
+
+/** `5 L +- 1 L`: meant as a spread, and as an expression 4 L. */
+const mixedSigns = (sign: string, from: number, to: number): Fault => ({
+  code: "bad-uncertainty",
+  from,
+  to,
+  data: {
+    why: `\`${sign}\` may mean a spread or a minus`,
+    fix: "for one standard deviation write `+/-` or `±`, for a minus `-` alone",
+  },
+});
 
 function strange(text: string, at: number): Fault {
   const c = String.fromCodePoint(text.codePointAt(at) ?? 32);

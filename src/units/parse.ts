@@ -36,6 +36,8 @@ interface Reader {
   /** How many factors were read in all: an offset allows no second. */
   factors: number;
   offset: number;
+  /** The symbol that the offset is of. */
+  point?: UnitFault;
 }
 
 interface Product {
@@ -79,9 +81,11 @@ function readFactor(reader: Reader, first: boolean): Product | UnitFault {
   reader.at += word.length;
   const exponent = readExponent(reader);
   reader.factors++;
-  reader.offset += symbol.offset;
-  if (reader.offset !== 0 && (reader.factors > 1 || exponent !== 1 || !first || from > 0))
-    return { fault: "offset", part: word, from, to: from + word.length };
+  if (symbol.offset !== 0) {
+    reader.offset = symbol.offset;
+    reader.point ??= { fault: "offset", part: word, from, to: from + word.length };
+  }
+  if (reader.point && (reader.factors > 1 || exponent !== 1 || !first || from > 0)) return reader.point;
   return raise(symbol, exponent);
 }
 

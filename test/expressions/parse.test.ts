@@ -69,6 +69,8 @@ test("units stand after numbers, in SI", () => {
   expect(numberFrom("3 L*2")).toBeCloseTo(0.006, 16);
   expect(numberFrom("35 degC")).toBeCloseTo(308.15, 12);
   expect(numberFrom("-5 degC")).toBeCloseTo(268.15, 12);
+  expect(numberFrom("(2 m) ^ 3")).toBe(8);
+  expect(numberFrom("2 m^3")).toBe(2);
   expect(numberFrom("gas-constant * 300 K")).toBeCloseTo(2494.338785445972, 9);
 });
 
@@ -91,10 +93,16 @@ describe("uncertainty", () => {
     expect(v.uncertainty?.value).toBeCloseTo(value, 15);
   });
 
-  test.each(["35 degC ± 1 degC", "35 degC ± 1 %", "2 L ±", "2 L ± x", "2 L ± -1 L", "2 ± 1 ± 1"])(
-    "%s is refused",
-    (text) => expect(faultOf(text).code).toBe("bad-uncertainty"),
-  );
+  test.each([
+    "35 degC ± 1 degC",
+    "35 degC ± 1 %",
+    "2 L ±",
+    "2 L ± x",
+    "2 L ± -1 L",
+    "2 ± 1 ± 1",
+    "5 L +- 1 L",
+    "5 L -+ 1 L",
+  ])("%s is refused", (text) => expect(faultOf(text).code).toBe("bad-uncertainty"));
 
   test("a rate law has none", () => expect(parseExpression("k * A ± 2 %")).toMatchObject({ code: "bad-expression" }));
 });
@@ -128,6 +136,9 @@ test.each<[string, string, string]>([
   ["10 L^/min", "bad-unit", "L^/min"],
   ["10 L^n", "bad-unit", "L^n"],
   ["1 + 3 W/m2/degC", "offset-unit", "degC"],
+  ["5 degC/min", "offset-unit", "degC"],
+  ["1 L + 2 m ^ 3", "bad-power", "2 m ^ 3"],
+  ["2 m ^n", "bad-power", "2 m ^n"],
   ["a +", "bad-expression", ""],
   ["(a + b", "bad-expression", "("],
   ["a + b)", "bad-expression", ")"],

@@ -18,6 +18,12 @@ test.each<[number, string, number, DimensionName]>([
   [1, "ft3", 0.028316846592, "volume"],
   [1, "in3", 1.6387064e-5, "volume"],
   [1, "gal", 3.785411784e-3, "volume"],
+  [1, "qt", 9.46352946e-4, "volume"],
+  [1, "pt", 4.73176473e-4, "volume"],
+  [1, "floz", 2.95735295625e-5, "volume"],
+  [128, "floz", 3.785411784e-3, "volume"],
+  [1, "impgal", 4.54609e-3, "volume"],
+  [1, "galUK", 4.54609e-3, "volume"],
   [231, "in3", 3.785411784e-3, "volume"],
   [42, "gal", 0.158987294928, "volume"],
   [1, "lb", 0.45359237, "mass"],
@@ -82,6 +88,8 @@ describe("faults", () => {
     ["C", "degC"],
     ["hours", "h"],
     ["gallons/day", "gal/d"],
+    ["imp", "impgal"],
+    ["fl", "floz"],
     ["widget", undefined],
     ["x", undefined],
   ])("%s is asked back as %s", (text, meant) => {
@@ -101,8 +109,10 @@ describe("faults", () => {
     (text) => expect(parseUnit(text)).toMatchObject({ fault: "offset" }),
   );
 
-  test("the place is that of the part", () =>
-    expect(parseUnit("mol/Foo/min")).toMatchObject({ part: "Foo", from: 4, to: 7 }));
+  test("the place is that of the part", () => {
+    expect(parseUnit("mol/Foo/min")).toMatchObject({ part: "Foo", from: 4, to: 7 });
+    expect(parseUnit("degC/min")).toMatchObject({ part: "degC", from: 0, to: 4 });
+  });
 
   test("any text is a unit or a fault, never a throw", () =>
     fc.assert(

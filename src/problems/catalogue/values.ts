@@ -31,9 +31,7 @@ export const valueEntries = {
     severity: "error",
     says: (d) => `\`${d.part}\` in \`${d.unit}\` is a point on a scale, but a temperature difference is meant here`,
     fix: (d) =>
-      d.part.includes("F") || d.part === "℉"
-        ? `write it per K (1 degF of difference is 5/9 K)`
-        : `write \`${d.unit.replace(d.part, "K")}\``,
+      `write \`${d.unit.replace(d.part, "K")}\`${/F|℉/.test(d.part) ? " (1 degF of difference is 5/9 K)" : ""}`,
   }),
   "bad-expression": entry<FaultData["bad-expression"]>({ severity: "error", says: (d) => d.why, fix: (d) => d.fix }),
   "unknown-function": entry<FaultData["unknown-function"]>({
