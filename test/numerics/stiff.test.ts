@@ -165,28 +165,28 @@ describe("the path", () => {
   });
 });
 
-test.each([1e-8, 1e-9])(
-  "rounding of fast terms, which drowns slow balances, does not stall the iteration: %d",
-  (relative) => {
-    // Three tanks, A <-> B at 1e6 and 2.5e5 per time, B + C -> D slow. Summed in this order, A + B carries noise of 1e-11. Demo.
-    const rhs = (_t: number, y: Float64Array, dy: Float64Array): void => {
-      for (let a = 0; a < 12; a += 4) {
-        const inflow = (s: number) => (a === 0 ? [1, 0, 0.7, 0][s] : y[a - 4 + s]) / 10;
-        const rate = 0.8 * y[a + 1] * y[a + 2];
-        dy[a] = inflow(0) - (1e6 + 0.1) * y[a] + 2.5e5 * y[a + 1];
-        dy[a + 1] = inflow(1) + 1e6 * y[a] - (2.5e5 + 0.1) * y[a + 1] - rate;
-        dy[a + 2] = inflow(2) - 0.1 * y[a + 2] - rate;
-        dy[a + 3] = inflow(3) - 0.1 * y[a + 3] + rate;
-      }
-    };
-    const problem = { rhs, start: new Float64Array(12), from: 0, to: 4000, method: "stiff" as const };
-    const run = integrate({ ...problem, relative, absolute: relative / 1000 });
-    expect(run.end).toBe("reached");
-    expect(run.last[8] + run.last[9] + run.last[11]).toBeCloseTo(1, 8);
-    expect(run.last[10] + run.last[11]).toBeCloseTo(0.7, 8);
-    expect(run.stats.rejected).toBeLessThan(most);
-  },
-);
+test.each([
+  [1e-8, 60], // 139 rejections without a measure of that noise
+  [1e-9, 300], // 3653
+])("rounding of fast terms, which drowns slow balances, does not stall the iteration: %d", (relative, most) => {
+  // Three tanks, A <-> B at 1e6 and 2.5e5 per time, B + C -> D slow. Summed in this order, A + B carries noise of 1e-11. Demo.
+  const rhs = (_t: number, y: Float64Array, dy: Float64Array): void => {
+    for (let a = 0; a < 12; a += 4) {
+      const inflow = (s: number) => (a === 0 ? [1, 0, 0.7, 0][s] : y[a - 4 + s]) / 10;
+      const rate = 0.8 * y[a + 1] * y[a + 2];
+      dy[a] = inflow(0) - (1e6 + 0.1) * y[a] + 2.5e5 * y[a + 1];
+      dy[a + 1] = inflow(1) + 1e6 * y[a] - (2.5e5 + 0.1) * y[a + 1] - rate;
+      dy[a + 2] = inflow(2) - 0.1 * y[a + 2] - rate;
+      dy[a + 3] = inflow(3) - 0.1 * y[a + 3] + rate;
+    }
+  };
+  const problem = { rhs, start: new Float64Array(12), from: 0, to: 4000, method: "stiff" as const };
+  const run = integrate({ ...problem, relative, absolute: relative / 1000 });
+  expect(run.end).toBe("reached");
+  expect(run.last[8] + run.last[9] + run.last[11]).toBeCloseTo(1, 8);
+  expect(run.last[10] + run.last[11]).toBeCloseTo(0.7, 8);
+  expect(run.stats.rejected).toBeLessThan(most);
+});
 
 describe("Jacobian", () => {
   /** A flow network whose first-order and second-order reactions are fast in places. Demo data. */
