@@ -149,11 +149,19 @@ export function transformsOf(
   };
 }
 
-/** Are there circles left where delayed nodes are cut open? */
+/** A circle of so few cells and junctions has too few poles to hide any. */
+const fewCells = 12;
+
+/** Are there circles left, where delayed nodes are cut open, in which something could ring? */
 function stillRound({ nodes, from, to }: Plant, passing: readonly Passing[]): boolean {
   const left = [...from.keys()].filter((k) => !(passing[to[k]].delay > 0));
   const graph = { size: nodes.length, from: left.map((k) => from[k]), to: left.map((k) => to[k]) };
-  return left.some((k) => from[k] === to[k]) || stronglyConnected(graph).some((group) => group.length > 1);
+  const rings = (group: ArrayLike<number>): boolean =>
+    group.length > fewCells || Array.from(group).some((i) => nodes[i].part === Part.Block);
+  return (
+    left.some((k) => from[k] === to[k] && rings([to[k]])) ||
+    stronglyConnected(graph).some((group) => group.length > 1 && rings(group))
+  );
 }
 
 type Of = (g: Complex) => Complex;

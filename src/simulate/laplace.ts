@@ -16,7 +16,7 @@ const trialNodes = 6_000;
 const trialWork = 1_500_000;
 /** The same where there is no other way. */
 const mostNodes = 400_000;
-const mostWork = 12_000_000;
+const mostWork = 3_000_000;
 /** In mean times: what is asked at the very moment of a jump is the value this soon after it. */
 const soon = 4 ** -50;
 
