@@ -17,10 +17,13 @@ function read(path: string): Uint8Array | undefined {
   }
 }
 
+/** A folder stands where a file is named. */
+const obstacle = (path: string): "folder" | undefined => (path === "parts" ? "folder" : undefined);
+
 const seen = new Set<string>();
 
 test.each(readdirSync(folder).filter((f) => f.endsWith(".yaml")))("%s", async (file) => {
-  const { problems } = parseAny(readFileSync(new URL(file, folder), "utf8"), { path: file, read });
+  const { problems } = parseAny(readFileSync(new URL(file, folder), "utf8"), { path: file, read, obstacle });
   for (const p of problems) seen.add(p.code);
   expect(problems.length).toBeGreaterThan(0);
   await expect(`${printProblems(problems)}\n`).toMatchFileSnapshot(`broken/${file.replace(/\.yaml$/, ".txt")}`);
@@ -69,6 +72,16 @@ test("too-many-parts", () => {
   const { problems } = parseAny(`network: A\noutlets: [${"a, ".repeat(50_000)}a]\n`, { path: "long.yaml" });
   for (const p of problems) seen.add(p.code);
   expect(problems.map((p) => p.code)).toEqual(["too-many-parts"]);
+});
+
+test("too-many-files", () => {
+  const uses = Array.from({ length: 1001 }, (_, i) => `a${i}: {kind: part, use: p${i}.yaml}`).join(", ");
+  const { problems } = parseAny(`network: A\nformat: 1\ncompartments: {${uses}}\n`, {
+    path: "many.yaml",
+    read: (file) => `network: ${file}\nformat: 1\noutlets: []\n`,
+  });
+  for (const p of problems) seen.add(p.code);
+  expect(problems.map((p) => p.code)).toContain("too-many-files");
 });
 
 test("and-more", () => {

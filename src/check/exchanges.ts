@@ -1,3 +1,4 @@
+import { memberOf } from "../model/members.js";
 import type { Compartment } from "../model/network.js";
 import type { Rule } from "./rule.js";
 
@@ -8,6 +9,10 @@ export const exchanges: Rule = (network, report, { nearest }) => {
   for (const c of network.compartments) {
     for (const e of c.exchanges) {
       const partner = bodies.get(e.partner);
+      if (!partner && memberOf(network.compartments, e.partner)) {
+        report("not-yet", e.at, { what: `an exchange with '${e.partner}', a member of a \`repeat\`,` });
+        continue;
+      }
       if (!partner) {
         const known = network.compartments.filter((b) => b !== c && refusal(b).length === 0).map((b) => b.name);
         const near = nearest(e.partner, known);

@@ -1,3 +1,4 @@
+import { membersOf } from "../model/members.js";
 import type { Network } from "../model/network.js";
 
 /** Names that stand for places of a network, as trials and duties use them. */
@@ -18,9 +19,7 @@ export function placeNames({ feeds, compartments, outlets, groups }: Network): P
       const terminals = zones[side].map((t) => `${name}.${t.name}`);
       return terminals.length === 1 ? [name, ...terminals] : terminals;
     });
-  const members = compartments.flatMap(({ name, counts }) =>
-    Array.from({ length: counts.repeat ?? 0 }, (_, i) => `${name}.${i + 1}`),
-  );
+  const members = compartments.flatMap(membersOf);
   const parts = (side: "inlets" | "outlets"): string[] => groups.filter((g) => g[side].length === 1).map((g) => g.name);
   return {
     feeds: feeds.map((f) => f.name),

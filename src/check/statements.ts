@@ -1,3 +1,4 @@
+import { memberOf } from "../model/members.js";
 import type { Rule } from "./rule.js";
 
 /** What `checks:` speak of is there. */
@@ -18,6 +19,7 @@ export const checkSubjects: Rule = (network, report, { nearest }) => {
   };
   for (const { what, of, ofAt } of network.checks) {
     const { wanted, known } = subjects[what];
+    if (what !== "mean-time" && memberOf(network.compartments, of)) continue;
     if (!known.includes(of)) report("unknown-place", ofAt, { name: of, wanted, nearest: nearest(of, known), known });
   }
 };

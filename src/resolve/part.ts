@@ -1,6 +1,7 @@
 import { kinds } from "../compartments/index.js";
 import type { Report } from "../problems/report.js";
 import type { Files } from "../read/files.js";
+import { beside } from "../read/paths.js";
 import { checkShape } from "../read/shape.js";
 import { child, entriesOf, itemsOf, type MapNode, type ScalarNode, type Tree, textOf } from "../read/tree.js";
 import type { Span } from "../text/source.js";
@@ -37,20 +38,33 @@ export interface Part {
   readonly instance: Instance;
 }
 
-/** Parts and their repeats may come to so many bodies; so many files may be opened for one network. */
+/** Parts and their repeats may come to so many bodies; so many may be written out, from so many files. */
 const mostBodies = 100_000;
+const mostParts = 3000;
 const mostFiles = 1000;
+
+/** What has been opened so far for one network. */
+interface Opened {
+  parts: number;
+  readonly files: Set<string>;
+}
 
 /** Opens the parts of a network, and theirs. A part that cannot be used is reported and left out. */
 export function openParts(tree: MapNode, files: Files, report: Report): Instance {
-  const opened = { files: 0 };
+  const opened: Opened = { parts: 0, files: new Set() };
   const root = open(tree, "", new Map(), files, report, opened);
-  if (bodiesOf(root) > mostBodies || opened.files > mostFiles) {
-    const at = tree.entries.find((e) => e.key.text === "compartments")?.key.at ?? tree.at;
-    report("too-many-bodies", at, { limit: mostBodies });
-    return { ...root, parts: new Map() };
-  }
-  return root;
+  const at = tree.entries.find((e) => e.key.text === "compartments")?.key.at ?? tree.at;
+  if (opened.files.size > mostFiles) report("too-many-files", at, { limit: mostFiles });
+  else if (opened.parts > mostParts) report("too-many-bodies", at, { limit: mostParts, of: "parts" });
+  else if (bodiesOf(root) > mostBodies) report("too-many-bodies", at, { limit: mostBodies, of: "bodies" });
+  else return root;
+  return { ...root, parts: new Map() };
+}
+
+/** Counts a part that is about to be opened; false where that is one too many. */
+function mayOpen(use: ScalarNode, opened: Opened): boolean {
+  opened.files.add(beside(use.at.source.path, use.text));
+  return ++opened.parts <= mostParts && opened.files.size <= mostFiles;
 }
 
 function open(
@@ -59,13 +73,13 @@ function open(
   bindings: ReadonlyMap<string, Binding>,
   files: Files,
   report: Report,
-  opened: { files: number },
+  opened: Opened,
 ): Instance {
   const parts = new Map<string, Part>();
   for (const { key, value: node } of entriesOf(child(tree, "compartments"))) {
     if (node.type !== "map" || !isPart(node)) continue;
     const use = child(node, "use");
-    if (use?.type !== "scalar" || ++opened.files > mostFiles) continue;
+    if (use?.type !== "scalar" || !mayOpen(use, opened)) continue;
     const inner = openNamed(use, "part", files, report);
     const whole = inner && checkShape(inner, "network", report) && wholeDocument(inner, "network", files, report);
     if (!whole) continue;

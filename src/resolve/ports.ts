@@ -1,3 +1,4 @@
+import { memberOf } from "../model/members.js";
 import type { Compartment, Stream } from "../model/network.js";
 import type { Report } from "../problems/report.js";
 import { child } from "../read/tree.js";
@@ -17,6 +18,8 @@ export interface Places {
   readonly feeds: ReadonlyMap<string, { readonly streams: readonly Stream[] }>;
   readonly bodies: readonly Compartment[];
   readonly parts: ReadonlyMap<string, Part>;
+  /** Parts that cannot be used. */
+  readonly lost: ReadonlySet<string>;
   readonly outlets: readonly string[];
 }
 
@@ -32,7 +35,7 @@ export function aimStreams(from: string, streams: readonly Stream[], places: Pla
     const [name, ...rest] = s.to.split(".");
     const part = places.parts.get(name);
     if (part) return { ...s, to: inletOf(part, rest.join("."), s, report) };
-    if (places.check) mustExist(from, s, places, report);
+    if (places.check && !places.lost.has(name)) mustExist(from, s, places, report);
     return s;
   });
 }
@@ -49,20 +52,31 @@ function inletOf(part: Part, port: string, { to, at }: Stream, report: Report): 
   if (port === "" && known.length === 1) return `${firstOf(part)}.${known[0]}`;
   if (port === "") report("port-open", at, { part: name, side: "inlet", known });
   else if (known.includes(port)) return `${firstOf(part)}.${port}`;
+  else if (isRepeat(part, port)) report("not-yet", at, { what: `a stream into '${to}', past the repeats before it,` });
   else report("unknown-port", at, { name: port, part: name, side: "inlet", nearest: nearest(port, known), known });
   return to;
 }
 
-function mustExist(from: string, { to, at }: Stream, { feeds, bodies, parts, outlets }: Places, report: Report): void {
+/** Does a port begin with the number of one of a part's repeats, as `2` or `2.feed`? */
+const isRepeat = ({ repeat }: Part, port: string): boolean =>
+  repeat > 1 && /^[1-9]\d*(\.|$)/.test(port) && Number.parseInt(port, 10) <= repeat;
+
+function mustExist(
+  from: string,
+  { to, at }: Stream,
+  { feeds, bodies, parts, lost, outlets }: Places,
+  report: Report,
+): void {
   const body = bodies.find((b) => b.name === to);
   const feed = feeds.get(to);
-  if (body || outlets.includes(to)) return;
+  // A member of a repeat is told with the rest of the network.
+  if (body || outlets.includes(to) || memberOf(bodies, to)) return;
   if (feed) {
     const enters = feed.streams.length === 1 ? feed.streams[0].to : undefined;
     report("into-feed", at, { name: to, from, enters });
     return;
   }
-  const known = [...bodies.map((b) => b.name), ...parts.keys(), ...outlets];
+  const known = [...bodies.map((b) => b.name), ...parts.keys(), ...lost, ...outlets];
   report("unknown-place", at, { name: to, wanted: "compartment or outlet", nearest: nearest(to, known), known });
 }
 

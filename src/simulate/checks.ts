@@ -1,5 +1,6 @@
 import { kindValues } from "../compile/evaluate.js";
 import type { Plant } from "../compile/plant.js";
+import { memberOf } from "../model/members.js";
 import type { Check } from "../model/network.js";
 import { meanAges } from "./ages.js";
 
@@ -37,7 +38,7 @@ function meanTimes(plant: Plant): Map<string, number> {
   return new Map([...plant.outlets.map((o): [string, number] => [o.name, ages[o.node]]), all]);
 }
 
-function volumeOf({ network, env, volume }: Plant, name: string): number {
+function volumeOf({ network, env, volume, columns }: Plant, name: string): number {
   if (name === "all") return volume.total;
   const part = network.groups.find((g) => g.name === name);
   if (part) {
@@ -48,13 +49,25 @@ function volumeOf({ network, env, volume }: Plant, name: string): number {
     );
   }
   const body = network.compartments.find((c) => c.name === name);
-  return body ? body.kind.volume(kindValues(body, env)) : Number.NaN;
+  if (body) return body.kind.volume(kindValues(body, env));
+  return memberOf(network.compartments, name) ? volumeOfNodes(columns, name) : Number.NaN;
 }
 
-/** Through-flow, exchange left out; of a part, what enters by all its inlets. */
+/** What a member of a repeat holds, its pockets included. */
+function volumeOfNodes({ size, volume, nameOf }: Plant["columns"], name: string): number {
+  let sum = 0;
+  for (let i = 0; i < size; i++) {
+    const node = nameOf(i);
+    if (node === name || node.startsWith(`${name}.`)) sum += volume[i];
+  }
+  return sum;
+}
+
+/** Through-flow, exchange and backflow left out, so that of a repeat all members have it; of a part, what enters by all its inlets. */
 function flowOf({ network, feeds, streams }: Plant, name: string): number {
   const feed = feeds.find((f) => f.name === name);
   if (feed) return feed.flow;
-  const ways = new Set(network.groups.find((g) => g.name === name)?.inlets ?? [name]);
+  const body = memberOf(network.compartments, name)?.name ?? name;
+  const ways = new Set(network.groups.find((g) => g.name === name)?.inlets ?? [body]);
   return streams.reduce((sum, s) => sum + (ways.has(s.to) && s.role !== "exchange" ? s.flow : 0), 0);
 }

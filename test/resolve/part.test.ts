@@ -205,6 +205,22 @@ outlets: [out]`);
   expect(new Set(found)).toContain("too-many-bodies");
 });
 
+test("one file may be placed many times, and many files once", () => {
+  const placed = (n: number, use: (i: number) => string): string =>
+    main(`feeds: {feed: {flow: 5 L/min, to: p0}}
+compartments:
+${Array.from({ length: n }, (_, i) => `  p${i}: {kind: part, use: ${use(i)}, to: ${i < n - 1 ? `p${i + 1}` : "out"}}`).join("\n")}
+outlets: [out]`)["main.yaml"];
+  const small = network(`feeds: {feed: {flow: 1 L/min, to: tank}}
+compartments: {tank: {kind: stirred, volume: 1 L, to: out}}
+outlets: [out]`);
+  const twelve = parse({ "small.yaml": small, "main.yaml": placed(1200, () => "small.yaml") });
+  expect(codes(twelve.problems)).toEqual([]);
+  const many = Object.fromEntries(Array.from({ length: 1001 }, (_, i) => [`s${i}.yaml`, small]));
+  const { problems } = parse({ ...many, "main.yaml": placed(1001, (i) => `s${i}.yaml`) });
+  expect(problems.map((p) => p.code)).toContain("too-many-files");
+});
+
 test.each(["total", "dead", "turns"])("a constant '%s' of the parent is not that of its part", (name) => {
   const library = main(`constants: {${name}: 7 L}
 feeds: {feed: {flow: 5 L/min, to: a}}

@@ -43,6 +43,18 @@ test("what holds", () => {
   expect(results.map((r) => r.holds)).toEqual(results.map(() => true));
 });
 
+test("of members of a repeat", () => {
+  const chain = `network: Chain
+format: 1
+feeds: {f: {flow: 6 L/min, to: a}}
+compartments:
+  a: {kind: stirred, volume: 30 L, repeat: 3, backflow: 50 %, stagnant: {volume: 6 L, exchange: 1 L/min}, to: out}
+outlets: [out]
+checks: [{flow: a.2, equals: 6 L/min}, {volume: a.2, equals: 12 L, within: 1e-12}, {volume: a.3, equals: 30 L}]
+`;
+  expect(runChecks(plantOf(chain)).map((r) => r.holds)).toEqual([true, true, false]);
+});
+
 test("what does not hold, and by how much", () => {
   const [time, volume, flow] = runChecks(
     plantOf(vessel(["mean-time: all, equals: 8 min", "volume: a, equals: 40.1 L", "flow: b, equals: 4.003 L/min"])),

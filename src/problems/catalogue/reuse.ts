@@ -119,9 +119,21 @@ export const reuseEntries = {
       }`,
     fix: "inside a recycle, divide streams by shares (`30 %`) in place of flows made of `feed.flow`",
   }),
-  "too-many-bodies": entry<{ limit: number }>({
+  "too-many-bodies": entry<{ limit: number; of: "bodies" | "parts" }>({
     severity: "error",
-    says: ({ limit }) => `parts and their repeats come to more than ${limit} bodies`,
-    fix: "lower `repeat`, or write many cells as `kind: zones`",
+    says: ({ limit, of }) =>
+      of === "bodies"
+        ? `parts and their repeats come to more than ${limit} bodies`
+        : `more than ${limit} parts are placed, those inside parts counted`,
+    fix: ({ of }) =>
+      of === "bodies"
+        ? "lower `repeat`, or write many cells as `kind: zones`"
+        : "write equal parts in a row as one with `repeat`, or many cells as `kind: zones`",
+  }),
+  "too-many-files": entry<{ limit: number }>({
+    severity: "error",
+    says: ({ limit }) => `the parts come from more than ${limit} files`,
+    fix: "describe what is alike in one file, and give what differs under `with`",
+    example: { limit: 1000 },
   }),
 } as const;
