@@ -39,24 +39,9 @@ function ofBinary(e: Part<"binary">, scope: DimensionScope): Result {
   if (!right || isFault(right)) return right;
   if (e.operator === "*") return times(left, right);
   if (e.operator === "/") return over(left, right);
-  if (scalePoints(e) > 1)
-    return fault(e, "unlike-terms", {
-      what: "added",
-      left: "a temperature",
-      right: "another (a difference would be in K)",
-    });
   if (sameDimension(left, right)) return left;
   const what = e.operator === "+" ? "added" : "subtracted";
   return fault(e, "unlike-terms", { what, left: nameDimension(left), right: nameDimension(right) });
-}
-
-/** How many points on a scale with a zero of its own (degC) a sum holds: 1 is a temperature, 0 a difference, 2 nonsense. */
-export function scalePoints(e: Expression): number {
-  if (e.type === "number") return e.unit.offset === 0 ? 0 : 1;
-  if (e.type === "negate") return -scalePoints(e.of);
-  if (e.type === "binary" && e.operator === "+") return scalePoints(e.left) + scalePoints(e.right);
-  if (e.type === "binary" && e.operator === "-") return scalePoints(e.left) - scalePoints(e.right);
-  return e.type === "call" && e.args[0] ? scalePoints(e.args[0]) : 0;
 }
 
 function ofPower(e: Part<"binary">, scope: DimensionScope): Result {

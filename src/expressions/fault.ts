@@ -9,6 +9,7 @@ export interface FaultData {
   "unknown-function": { name: string; nearest: string | undefined };
   "bad-uncertainty": { why: string; fix: string };
   "unlike-terms": { what: string; left: string; right: string };
+  "temperature-scale": { why: string; fix: string };
   "bad-power": { why: string; fix: string };
   "ratio-wanted": { what: string; got: string };
 }

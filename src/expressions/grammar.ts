@@ -1,7 +1,7 @@
 import { nearest } from "../text/nearest.js";
-import { formatNumber } from "../units/format.js";
-import { inUnit } from "../units/unit.js";
-import type { Expression, Operator } from "./ast.js";
+import { formatNumber, formatQuantity } from "../units/format.js";
+import { inUnit, type Unit } from "../units/unit.js";
+import type { Expression, Operator, Range } from "./ast.js";
 import { type Fault, isFault } from "./fault.js";
 import { functions } from "./functions.js";
 import { broken, type Reader } from "./reader.js";
@@ -47,8 +47,17 @@ function readSigned(reader: Reader): Read {
   const at = { from: sign.from, to: of.at.to };
   if (sign.sign === "+") return { ...of, at };
   // -5 degC is a temperature below zero, not minus 278.15 K.
-  if (of.type === "number" && of.unit.offset !== 0) return { ...of, value: 2 * of.unit.offset - of.value, at };
+  if (of.type === "number" && of.unit.offset !== 0) {
+    const value = 2 * of.unit.offset - of.value;
+    return value < 0 ? belowAbsoluteZero(of.unit, value, at) : { ...of, value, at };
+  }
   return { type: "negate", of, at };
+}
+
+function belowAbsoluteZero(unit: Unit, value: number, at: Range): Fault {
+  const say = (si: number): string => formatQuantity(si, unit, 6);
+  const fix = `write a temperature above ${say(0)}`;
+  return { code: "bad-number", ...at, data: { text: say(value), why: "lies below absolute zero", fix } };
 }
 
 /** Powers bind from the right, and their exponent may carry a minus: 2^-1, 2^3^2 = 2^9. */

@@ -1,4 +1,5 @@
 import type { Expression } from "../expressions/ast.js";
+import type { Scale } from "../expressions/scale.js";
 import type { Span } from "../text/source.js";
 import type { Dimension } from "../units/dimension.js";
 import type { Unit } from "../units/unit.js";
@@ -10,6 +11,8 @@ export type Env = ArrayLike<number>;
 export interface Value {
   readonly at: Span;
   readonly dimension: Dimension;
+  /** What a temperature is: a point on a scale, or a difference. */
+  readonly scale?: Scale;
   /** The unit first written in it, for printing; undefined where it is made of names alone. */
   readonly unit: Unit | undefined;
   /** For derivatives, and to show how the value came about. */

@@ -9,7 +9,7 @@ import { child, type Entry, entriesOf, type Tree } from "../read/tree.js";
 import { type Dimension, dimensions } from "../units/dimension.js";
 import { checkName } from "./check-name.js";
 import { dependencyOrder } from "./dependency-order.js";
-import { resolveValue, type Scope, writtenValue } from "./value.js";
+import { resolveTemperature, resolveValue, type Scope, writtenValue } from "./value.js";
 
 /** R, J/(mol K). */
 const gasConstant = knownConstants.get("gas-constant")?.value ?? Number.NaN;
@@ -40,12 +40,13 @@ export function resolveConstants(
   const index = new Map(entries.map((e, i) => [e.key.text, i]));
   const temperatureSlot = firstSlot + entries.length;
   const found = new Map<string, Dimension>();
+  const values: (Value | undefined)[] = entries.map(() => undefined);
   const scope: Scope = {
     slot: (name) => (name === "T" ? temperatureSlot : at(index.get(name), firstSlot)),
     dimension: (name) => (name === "T" ? dimensions.temperature : found.get(name)),
     names: () => [...index.keys(), "T"],
+    scale: (name) => (name === "T" ? "point" : values[index.get(name) ?? -1]?.scale),
   };
-  const values: (Value | undefined)[] = entries.map(() => undefined);
   const order: number[] = [];
   const needed = entries.map(({ value }) => needs(value).flatMap((name) => index.get(name) ?? []));
   const { order: possible, circles } = dependencyOrder(needed);
@@ -101,7 +102,7 @@ function resolveConstant(
     report("arrhenius-half", key.at, { name: key.text, has, lacks });
     return undefined;
   }
-  const reference = resolveValue(atNode, dimensions.temperature, scope, report);
+  const reference = resolveTemperature(atNode, scope, report);
   const activation = resolveValue(activationNode, dimensions["molar energy"], scope, report);
   return value && reference && activation && arrhenius(value, reference, activation, temperature);
 }

@@ -1,6 +1,7 @@
 import { namesIn } from "../expressions/ast.js";
 import { compileExpression } from "../expressions/compile.js";
 import { differentiate } from "../expressions/differentiate.js";
+import { scaleOf } from "../expressions/scale.js";
 import type { Chemistry, Reaction, Species } from "../model/chemistry.js";
 import type { Report } from "../problems/report.js";
 import { child, entriesOf, itemsOf, type MapNode, type Tree, textOf } from "../read/tree.js";
@@ -11,7 +12,7 @@ import { type ChemicalConstants, resolveConstants } from "./chemical-constants.j
 import { explainRates } from "./rate-dimension.js";
 import { resolveReaction, type WrittenReaction } from "./reaction.js";
 import { aboveZero } from "./sign.js";
-import { bindValue, emptyScope, resolveValue, type Scope } from "./value.js";
+import { bindValue, emptyScope, reportFault, resolveValue, type Scope } from "./value.js";
 
 /**
  * Binds a chemistry: species and constants to slots, rate laws and their exact derivatives to closures, and finds in which
@@ -29,7 +30,7 @@ export function resolveChemistry(tree: MapNode, path: string, report: Report): C
   const nodes = itemsOf(child(tree, "reactions"));
   const written = nodes.flatMap((node) => {
     const one = resolveReaction(node, names, declaredConstants, scope, report);
-    return one && namesFound(one, scope, constants.whole, report) ? [one] : [];
+    return one && namesFound(one, scope, constants.whole, report) && scalesFit(one, scope, report) ? [one] : [];
   });
   if (!constants.whole || written.length < nodes.length || species.length < declared.length) return undefined;
 
@@ -78,6 +79,7 @@ function scopeOf(species: readonly string[], { constants, dimensions: found }: C
     slot: (name) => slots.get(name),
     dimension: (name) => (name === "T" ? dimensions.temperature : found.get(name)),
     names: () => [...slots.keys()],
+    scale: (name) => (name === "T" ? "point" : constants.find((c) => c.name === name)?.value.scale),
   };
 }
 
@@ -86,6 +88,13 @@ function namesFound(w: WrittenReaction, scope: Scope, whole: boolean, report: Re
   if (namesIn(w.rate).every((name) => scope.slot(name) !== undefined)) return true;
   if (whole) bindValue(w.rateNode, { expression: w.rate }, "any", scope, report);
   return false;
+}
+
+/** Dimensions are looked at once all laws are known; what a law does with temperatures can be told at once. */
+function scalesFit({ rate, rateNode }: WrittenReaction, scope: Scope, report: Report): boolean {
+  const scale = scaleOf(rate, scope);
+  if (typeof scale !== "string") reportFault(rateNode, scale, report);
+  return typeof scale === "string";
 }
 
 function bindReaction(

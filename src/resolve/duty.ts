@@ -9,7 +9,7 @@ import { concentrationBases } from "./bases.js";
 import { massEquations, settleFeeds } from "./feed-basis.js";
 import { resolveReportLine } from "./report-line.js";
 import { aboveZero } from "./sign.js";
-import { emptyScope, resolveValue, type Wanted } from "./value.js";
+import { emptyScope, resolveTemperature, resolveValue, type Wanted } from "./value.js";
 
 /** Whoever can read files hands over the chemistry that a duty names; undefined once its problems are reported. */
 export interface DutyFiles {
@@ -33,7 +33,7 @@ export function resolveDuty(tree: MapNode, path: string, files: DutyFiles, repor
   const chemistry = named === undefined || !chemistryNode ? undefined : files.chemistry(named, chemistryNode.at);
   const flows = placed(child(tree, "flows"), () => dimensions.flow, "the flow of feed", false, tell);
   const temperatureNode = child(tree, "temperature");
-  const temperature = temperatureNode && resolveValue(temperatureNode, dimensions.temperature, emptyScope, tell);
+  const temperature = temperatureNode && resolveTemperature(temperatureNode, emptyScope, tell);
   aboveZero("the temperature", temperature, false, tell);
   if (named !== undefined && !chemistry) return undefined; // its own problems are reported; names cannot be looked up
   const title = child(tree, "duty");

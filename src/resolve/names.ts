@@ -29,9 +29,11 @@ export function resolveNames(instances: readonly Instance[], report: Report): Re
   const slots = new Map(declared.map((d, i) => [d.name, i]));
   const found = new Map<string, Dimension>();
   for (const d of declared) if (d.role === "inflow") found.set(d.name, dimensions.flow);
+  const values = new Map<number, Value>();
   const scope = (prefix: string): Scope => ({
     slot: (name) => slots.get(prefix + name),
     dimension: (name) => found.get(prefix + name),
+    scale: (name) => values.get(slots.get(prefix + name) ?? -1)?.scale,
     names: () => [...slots.keys()].filter((n) => n.startsWith(prefix)).map((n) => n.slice(prefix.length)),
     ...(prefix === "" ? {} : { whole: (name: string) => prefix + name }),
   });
@@ -41,7 +43,6 @@ export function resolveNames(instances: readonly Instance[], report: Report): Re
     const { node, at } = declared[circle[0]];
     report("circular-names", node?.at ?? at, { circle: circle.map((i) => declared[i].name) });
   }
-  const values = new Map<number, Value>();
   for (const slot of order) {
     const { node, prefix, name, role } = declared[slot];
     const wanted = replacedDimension(declared[slot], scope) ?? declared[slot].wanted;

@@ -1,8 +1,9 @@
 import { type Expression, namesIn, renamed, type Uncertainty, visit, type WrittenValue } from "../expressions/ast.js";
 import { compileExpression } from "../expressions/compile.js";
-import { dimensionOf, scalePoints } from "../expressions/dimension-of.js";
+import { dimensionOf } from "../expressions/dimension-of.js";
 import { type Fault, isFault } from "../expressions/fault.js";
 import { parseExpression, parseValue, parseWrittenUnit } from "../expressions/parse.js";
+import { type Scale, scaleOf } from "../expressions/scale.js";
 import type { Env, Value } from "../model/value.js";
 import type { Report } from "../problems/report.js";
 import type { ScalarNode, Tree } from "../read/tree.js";
@@ -22,6 +23,8 @@ export interface Scope {
   slot(name: string): number | undefined;
   dimension(name: string): Dimension | undefined;
   names(): readonly string[];
+  /** Whether a temperature is a point on a scale or a difference; either where nobody can tell. */
+  readonly scale?: (name: string) => Scale | undefined;
   /** What a name is called from outside, where the document is a part of another: `core.tanks` for its own `tanks`. */
   readonly whole?: (name: string) => string;
 }
@@ -33,6 +36,15 @@ export const emptyScope: Scope = { slot: () => undefined, dimension: () => undef
 export function resolveValue(node: Tree | undefined, wanted: Wanted, scope: Scope, report: Report): Value | undefined {
   const written = writtenValue(node, report, wanted);
   return written && bindValue(node as ScalarNode, written, wanted, scope, report);
+}
+
+/** The same for an absolute temperature: a difference of two will not do. */
+export function resolveTemperature(node: Tree | undefined, scope: Scope, report: Report): Value | undefined {
+  const value = resolveValue(node, dimensions.temperature, scope, report);
+  if (value?.scale !== "step") return value;
+  const why = "this is a difference of temperatures; a temperature is wanted";
+  report("temperature-scale", value.at, { why, fix: "write the difference in K, like `20 degC - 5 K`" });
+  return undefined;
 }
 
 /** The same for a rate law or bound, where no `±` may stand. */
@@ -71,6 +83,8 @@ export function bindValue(
   if (!dimension) return undefined;
   if (isFault(dimension)) return reportFault(node, dimension, report);
   if (!fits(wanted, dimension)) return wrongDimension(node, expression, dimension, wanted, report);
+  const scale = scaleOf(expression, scope);
+  if (typeof scale !== "string") return reportFault(node, scale, report);
   const fault = uncertainty && spreadFault(uncertainty, dimension);
   if (fault) return reportFault(node, fault, report);
   const of = compileExpression(expression, (name) => scope.slot(name));
@@ -78,7 +92,8 @@ export function bindValue(
   return {
     at: node.at,
     dimension,
-    unit: unitFor(expression, dimension),
+    unit: unitFor(expression, dimension, scale),
+    scale,
     expression: whole,
     uses: namesIn(whole),
     of,
@@ -164,12 +179,11 @@ function wrongDimension(node: ScalarNode, e: Expression, got: Dimension, wanted:
 }
 
 /** The unit first written that has the dimension of the whole; degC only where the whole is a point on that scale. */
-function unitFor(e: Expression, dimension: Dimension): Unit | undefined {
+function unitFor(e: Expression, dimension: Dimension, scale: Scale): Unit | undefined {
   let unit: Unit | undefined;
-  const isPoint = scalePoints(e) === 1;
   visit(e, (part) => {
     if (part.type !== "number" || part.unit.name === "" || !sameDimension(part.unit.dimension, dimension)) return;
-    if (part.unit.offset === 0 || isPoint) unit ??= part.unit;
+    if (part.unit.offset === 0 || scale === "point") unit ??= part.unit;
   });
   return unit;
 }

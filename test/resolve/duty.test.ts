@@ -101,7 +101,7 @@ describe("what is wrong is told where it stands", () => {
     [[fed, "report: [conversion of C]"], "unknown-place at conversion of C"],
     [[fed, "report: [how much A]"], "bad-report-line at how much A"],
     [[fed, "report: [time A at product above 0.2 mol/L]"], "not-yet at time A at product above 0.2 mol/L"],
-    [[fed, "temperature: -300 degC"], "below-zero at -300 degC"],
+    [[fed, "temperature: -300 degC"], "bad-number at -300 degC"],
   ])("%j", (lines, expected) => {
     const { found, told } = readDuty(duty("chemistry: c", ...lines), second);
     expect(found).toBeUndefined();

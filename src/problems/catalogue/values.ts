@@ -52,6 +52,11 @@ export const valueEntries = {
     says: (d) => `${d.left} and ${d.right} cannot be ${d.what}`,
     fix: "make both the same kind of quantity, by their units or by multiplying or dividing",
   }),
+  "temperature-scale": entry<FaultData["temperature-scale"]>({
+    severity: "error",
+    says: (d) => d.why,
+    fix: (d) => d.fix,
+  }),
   "bad-power": entry<FaultData["bad-power"]>({ severity: "error", says: (d) => d.why, fix: (d) => d.fix }),
   "ratio-wanted": entry<FaultData["ratio-wanted"]>({
     severity: "error",
