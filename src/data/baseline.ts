@@ -1,7 +1,9 @@
 import { extent } from "./extent.js";
+import { type Hidden, hiddenAtEnd, hiddenBeside } from "./hidden-tail.js";
+import { gather, type TailedRecord } from "./late-window.js";
 import { roughness } from "./noise.js";
-import { hiddenLevel, type SlowTail, slowTailOf, type TailedRecord } from "./slow-tail.js";
-import { decayMoments, type RawFour } from "./tail.js";
+import { type SlowTail, slowTailOf } from "./slow-tail.js";
+import { tailOf } from "./tail.js";
 
 /** What lies under the signal: level + slope * (t - middle), with standard errors (independent at `middle`). SI. */
 export interface Baseline {
@@ -15,23 +17,8 @@ export interface Baseline {
   readonly driftUnknown: boolean;
   /** The tail that it was fitted together with. */
   readonly tail?: SlowTail;
-  /** The tail that it may have taken away, where it was drawn through the end of the record. */
+  /** The tail that it may have taken away or that is lost in noise over it. */
   readonly hidden?: Hidden;
-}
-
-/** A decay with the time constant of the whole record that a baseline would hide. */
-export interface Hidden {
-  /** At the end, one standard error. */
-  readonly level: number;
-  /** What was drawn through the end: with the decay it would have taken so much away before it. */
-  readonly as: "constant" | "drift";
-}
-
-/** Raw moments of what would be missing: beyond the end, and what the baseline took away up to it (from time 0 on). */
-export function hiddenMoments({ level, as }: Hidden, end: number): RawFour {
-  const beyond = decayMoments(level, 1 / end, end);
-  const under = (k: number): number => (level * end ** (k + 1)) / (k + (as === "drift" ? 2 : 1));
-  return beyond.map((m, k) => m + under(k)) as unknown as RawFour;
 }
 
 /**
@@ -50,28 +37,50 @@ export function baselineOf(
   mode: "constant" | "drift",
   isPulse = true,
 ): Baseline | undefined {
-  const early = range(0, before);
-  const record = isPulse && t.length - before >= 20 && (mode === "drift" || early.length < 3);
-  const late: TailedRecord = { time: t, value: y, before, peak: peakOf(y, before), mode };
-  const scatter = record ? lateScatter(late, sd) : sd;
-  const joint = record ? slowTailOf(late, scatter) : undefined;
-  if (joint) {
-    return {
-      level: joint.offset,
-      slope: joint.drift,
-      middle: joint.middle,
-      levelError: Math.sqrt(joint.covariance[0]),
-      slopeError: Math.sqrt(joint.covariance[5]),
-      from: "under the tail",
-      driftUnknown: false,
-      tail: joint,
-    };
-  }
   const plain = plainBaseline(t, y, before, sd, mode);
-  if (!plain || !record || plain.from === "before the injection") return plain;
-  const as = plain.from === "after the tail" ? "constant" : "drift";
-  const { level, error } = hiddenLevel({ ...late, mode: as }, scatter);
-  return { ...plain, hidden: { level: Math.hypot(level, error), as } };
+  if (!isPulse || t.length - before < 20) return plain;
+  const late: TailedRecord = { time: t, value: y, before, peak: peakOf(y, before), mode };
+  if (plain?.from === "before the injection" && mode === "constant" && isPower(t, y, before, sd, plain.level))
+    return plain;
+  const scatter = lateScatter(late, sd);
+  const joint = slowTailOf(late, scatter);
+  // Points before the injection tell a constant better than the end does under a tail that is not seen.
+  const settled = plain?.from === "before the injection" && mode === "constant" && (!joint || joint.hidden);
+  if (plain && (!joint || settled)) return { ...plain, ...hiddenOver(late, plain, joint, scatter) };
+  if (!joint) return undefined;
+  return {
+    level: joint.offset,
+    slope: joint.drift,
+    middle: joint.middle,
+    levelError: Math.sqrt(joint.covariance[0]),
+    slopeError: Math.sqrt(joint.covariance[5]),
+    from: "under the tail",
+    driftUnknown: false,
+    tail: joint,
+    ...(joint.hidden ? { hidden: joint.hidden } : {}),
+  };
+}
+
+/** What may be hidden over a baseline drawn as if there were no slow tail. */
+function hiddenOver(
+  record: TailedRecord,
+  plain: Baseline,
+  joint: SlowTail | undefined,
+  scatter: number,
+): { hidden?: Hidden } {
+  const known = plain.from === "before the injection";
+  const over: TailedRecord = known
+    ? { ...record, mode: "nothing", value: record.value.map((y) => y - plain.level) }
+    : { ...record, mode: plain.slope === 0 ? "constant" : "drift" };
+  const first = joint ? record.time.findIndex((t) => t >= joint.from) : 0;
+  const hidden = joint ? hiddenBeside(over, gather(over, first), joint.rates, scatter) : hiddenAtEnd(over, scatter);
+  return hidden ? { hidden } : {};
+}
+
+/** A power law over a constant would be taken for slow decays and be cut off where they end. */
+function isPower(t: Float64Array, y: Float64Array, before: number, sd: number, level: number): boolean {
+  const value = y.subarray(before).map((v) => v - level);
+  return tailOf(t.subarray(before), value, new Float64Array(value.length).fill(sd)).is === "power";
 }
 
 /** A straight line or a constant, as if nothing but noise lay over it. */

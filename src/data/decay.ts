@@ -43,3 +43,18 @@ export function decayOver(u: Float64Array, y: Float64Array): Decay {
   const spread = n > 2 ? residual / (n - 2) : Number.POSITIVE_INFINITY;
   return { rate, rateError: Math.sqrt(spread / (height * height * (jj - (gj * gj) / gg))), residual };
 }
+
+/** Integrals of t^k, k = 0 to 3. */
+export type RawFour = readonly [number, number, number, number];
+
+/** Of level * exp(-rate (t - end)) over [end, infinity). Closed forms, by parts. */
+export function decayMoments(level: number, rate: number, end: number): RawFour {
+  const [l, T] = [rate, end];
+  const m0 = level / l;
+  return [
+    m0,
+    m0 * (T + 1 / l),
+    m0 * (T * T + (2 * T) / l + 2 / l ** 2),
+    m0 * (T ** 3 + (3 * T * T) / l + (6 * T) / l ** 2 + 6 / l ** 3),
+  ];
+}

@@ -18,7 +18,7 @@ export function momentErrors(
     const gradient = gradientOf(name, found);
     const doubt = found.doubt[name];
     const points = pointsError(gradient, response);
-    if (curve.baseline?.tail) return Math.hypot(points, jointError(gradient, doubt, response, curve));
+    if (curve.baseline?.tail) return Math.hypot(points, jointError(gradient, doubt, response, curve), doubt.hidden);
     const figure = figures[name];
     const under = moved
       ? Math.hypot(...moved.map((m) => figure(m) - figure(found)))

@@ -101,11 +101,11 @@ const wording = {
     couldBe: "a log that starts late or ends early",
     next: "log before the injection and until the reading has settled",
   },
-  "baseline-from-end": {
+  "tail-hidden": {
     weight: "caution",
-    message: "the baseline was drawn through the end of the record: a slow tail that lies under it would be taken off",
-    couldBe: "a tail slower than the record, or none at all",
-    next: "measure longer; log before the injection and a blank at the end; fit a network, which keeps tail and drift apart",
+    message: "a slow tail that cannot be told from baseline and noise could change the mean",
+    couldBe: "a tail with a time constant of a quarter of the record or more, or none at all",
+    next: "measure longer, with more tracer; log before the injection and a blank at the end; fit a network, which knows the volume",
   },
   "tail-with-baseline": {
     weight: "caution",

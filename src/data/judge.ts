@@ -109,7 +109,7 @@ export function judgeRecovery(at: string, recovery: Figure, expected = 1, unseen
   const error = recovery.standardError;
   const share = expected === 1 ? "" : `, ${percent(expected)} of the flow leaves here`;
   const others = unseen.length === 0 ? "" : `; not measured: ${unseen.join(", ")}`;
-  const evidence = `recovery ${percent(recovery.value)}${!error ? "" : ` ± ${percent(error)}`}${share}${others}`;
+  const evidence = `recovery ${percent(recovery.value)}${!error || error < 1e-3 * recovery.value ? "" : ` ± ${percent(error)}`}${share}${others}`;
   const ratio = recovery.value / expected;
   if (isClose(ratio) || Math.abs(ratio - 1) <= (2 * (error ?? 0)) / expected) return [];
   return [finding(ratio < 1 ? "recovery-low" : "recovery-high", at, evidence)];
@@ -117,18 +117,22 @@ export function judgeRecovery(at: string, recovery: Figure, expected = 1, unseen
 
 const isClose = (ratio: number): boolean => ratio >= 0.9 && ratio <= 1.1;
 
-/** What a baseline that was drawn through the end of the record leaves open of the moments. */
+/** What baseline and noise leave open of the moments, by the tail that they may hide. */
 export function judgeBaseline(curve: CleanCurve, found: RawMoments, meanError: number): Finding[] {
   const { baseline, at, timeUnit } = curve;
-  const error = formatQuantity(meanError, timeUnit, 2);
-  if (baseline?.tail) {
-    const slow = formatQuantity(1 / baseline.tail.rate, timeUnit, 3);
-    return [finding("tail-with-baseline", at, `time constant of the tail ${slow}; mean ± ${error} with it`)];
-  }
   const { area, mean } = found.doubt;
-  if (!baseline?.hidden || !(area.hidden > 0.005 * found.area || mean.hidden > 0.01 * found.mean)) return [];
-  const evidence = `a tail not told from it could hold ${percent(area.hidden / found.area)} of the area; mean ± ${error} with it`;
-  return [finding("baseline-from-end", at, evidence)];
+  const error = formatQuantity(meanError, timeUnit, 2);
+  const judged: Finding[] = [];
+  const tail = baseline?.tail;
+  if (tail && baseline.slope !== 0) {
+    const slow = formatQuantity(1 / tail.rate, timeUnit, 3);
+    judged.push(finding("tail-with-baseline", at, `time constant of the tail ${slow}; mean ± ${error} with it`));
+  }
+  if (baseline?.hidden && (area.hidden > 0.01 * found.area || mean.hidden > 0.02 * found.mean)) {
+    const evidence = `it could hold ${percent(area.hidden / found.area)} of the area and add ${formatQuantity(mean.hidden, timeUnit, 2)} to the mean`;
+    judged.push(finding("tail-hidden", at, evidence));
+  }
+  return judged;
 }
 
 /** Mean against volume over flow: told only where they differ by more than two standard errors. */

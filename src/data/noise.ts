@@ -8,7 +8,7 @@ export interface Noise {
 
 /**
  * The scatter of a reading: as declared; else that of at least 8 points before the injection; else the roughness of the
- * curve, which is an upper bound where samples are sparse.
+ * curve or of its last third, which are upper bounds where samples are sparse.
  * @param n how many of the points lie before the injection
  */
 export function noiseOf(t: Float64Array, y: Float64Array, n: number, declared: Reading["noise"]): Noise {
@@ -18,8 +18,15 @@ export function noiseOf(t: Float64Array, y: Float64Array, n: number, declared: R
     return { sd: y.map((c) => Math.hypot(floor, relative * c)), from: "declared" };
   }
   const before = n >= 8 ? roughness(t.subarray(0, n), y.subarray(0, n)) : 0;
-  const sd = n >= 8 ? before : roughness(t, y);
+  const sd = n >= 8 ? before : leastRoughness(t, y);
   return { sd: new Float64Array(y.length).fill(sd), from: n >= 8 ? "before the injection" : "roughness of the curve" };
+}
+
+function leastRoughness(t: Float64Array, y: Float64Array): number {
+  const whole = roughness(t, y);
+  const third = Math.floor(t.length / 3);
+  const late = third < 8 ? 0 : roughness(t.subarray(-third), y.subarray(-third));
+  return late > 0 ? Math.min(whole, late) : whole;
 }
 
 /**

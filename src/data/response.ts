@@ -1,7 +1,9 @@
-import { type Baseline, type Hidden, hiddenMoments } from "./baseline.js";
+import type { Baseline } from "./baseline.js";
 import type { CleanCurve } from "./clean.js";
+import type { RawFour } from "./decay.js";
+import { type Hidden, slowest } from "./hidden-tail.js";
 import type { SlowTail } from "./slow-tail.js";
-import { type RawFour, type Tail, tailError, tailGradient, tailMoments, tailOf } from "./tail.js";
+import { type Tail, tailError, tailGradient, tailMoments, tailOf } from "./tail.js";
 import { type Rule, weights } from "./weights.js";
 
 /**
@@ -47,7 +49,11 @@ export function pulseResponse(curve: Sampled, rule: Rule): Response {
     sd,
     weight: weights(time, rule),
     tail,
-    hidden: curve.baseline?.hidden,
+    // A tail that is seen to be slow beside the record hides none slower that would count.
+    hidden:
+      tail.is === "exponential" && tail.rate * time[time.length - 1] < slowest.alone
+        ? undefined
+        : curve.baseline?.hidden,
     ...(lead ? { front: (gap * Math.abs(value[1])) / Math.sqrt(12) } : {}),
   };
 }
@@ -138,8 +144,7 @@ export const figures = {
 function doubtsOf({ tail, time, hidden }: Response, of: (raw: RawFour) => Central): RawMoments["doubt"] {
   const end = time[time.length - 1];
   const beyond = tailMoments(tail);
-  const more = hidden && hiddenMoments(hidden, end);
-  const moved = beyond.map((m, k) => m + (more?.[k] ?? 0)) as unknown as RawFour;
+  const moved = beyond.map((m, k) => m + (hidden?.raw[k] ?? 0)) as unknown as RawFour;
   const doubt = (figure: (m: Central) => number): TailDoubt => {
     const by = (raw: RawFour): number => figure(of(raw));
     return {

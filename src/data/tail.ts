@@ -1,4 +1,4 @@
-import { decayOver } from "./decay.js";
+import { decayMoments, decayOver, type RawFour } from "./decay.js";
 import { logLine } from "./log-line.js";
 import { roughness } from "./noise.js";
 import { isPowerLaw } from "./power-law.js";
@@ -144,21 +144,6 @@ function window(
   return best;
 }
 
-/** Integrals of t^k, k = 0 to 3. */
-export type RawFour = readonly [number, number, number, number];
-
-/** Of level * exp(-rate (t - end)) over [end, infinity). Closed forms, by parts. */
-export function decayMoments(level: number, rate: number, end: number): RawFour {
-  const [l, T] = [rate, end];
-  const m0 = level / l;
-  return [
-    m0,
-    m0 * (T + 1 / l),
-    m0 * (T * T + (2 * T) / l + 2 / l ** 2),
-    m0 * (T ** 3 + (3 * T * T) / l + (6 * T) / l ** 2 + 6 / l ** 3),
-  ];
-}
-
 /** What the extrapolated tail adds. */
 export const tailMoments = (tail: Tail): RawFour =>
   tail.is === "exponential" ? decayMoments(tail.level, tail.rate, tail.end) : [0, 0, 0, 0];
@@ -167,10 +152,14 @@ export const tailMoments = (tail: Tail): RawFour =>
 export function tailGradient(tail: Tail, of: (raw: RawFour) => number): readonly [level: number, rate: number] {
   if (tail.is !== "exponential" || !tail.joint) return [0, 0];
   const { level, rate, end } = tail;
-  const by = (dl: number, dr: number): number =>
-    of(decayMoments(level * (1 + dl), rate * (1 + dr), end)) - of(decayMoments(level * (1 - dl), rate * (1 - dr), end));
-  const step = 1e-4;
-  return [by(step, 0) / (2 * step * level), by(0, step) / (2 * step * rate)];
+  const at = (l: number, r: number): number => of(decayMoments(l, r, end));
+  const step = 1e-4 * level;
+  // A slower rate moves moments more than a faster one: the change is taken over one standard error that way.
+  const slower = Math.min(0.6 * rate, Math.sqrt(tail.joint.covariance[15]) + 1e-4 * rate);
+  return [
+    (at(level + step, rate) - at(level - step, rate)) / (2 * step),
+    (at(level, rate) - at(level, rate - slower)) / slower,
+  ];
 }
 
 /**

@@ -52,3 +52,14 @@ export const tanks =
     for (let k = 2; k < n; k++) factorial *= k;
     return ((n / tau) * x ** (n - 1) * Math.exp(-x)) / factorial;
   };
+
+/**
+ * Outlet of a stirred tank of volume V that trades flow x with a quiet one of volume W, after a pulse of dose over V = 1
+ * at t = 0: two exponentials, by the eigenvalues of the two balances.
+ */
+export function twoZones(V: number, W: number, x: number, flow: number): (t: number) => number {
+  const [a, b, c, d] = [-(flow + x) / V, x / V, x / W, -x / W];
+  const root = Math.sqrt(((a - d) / 2) ** 2 + b * c);
+  const [slow, fast] = [(a + d) / 2 + root, (a + d) / 2 - root];
+  return (t) => ((slow - d) * Math.exp(slow * t) - (fast - d) * Math.exp(fast * t)) / (slow - fast);
+}
