@@ -47,7 +47,8 @@ export function transformsOf(
     return { re: re / nodes[i].inflow, im: im / nodes[i].inflow };
   };
   /** Amount held by the nodes between `entering` and outflow; cells by what is in them. */
-  const held = (s: Complex, copy: Copy | undefined): Complex => {
+  const held = (s: Complex, copy: Copy | undefined, of: Of): Complex => {
+    const back = of(complex.of(-1)).re;
     let cells: Complex = complex.of(0);
     let between: Complex = complex.of(0);
     for (let i = 0; i < n; i++) {
@@ -57,19 +58,21 @@ export function transformsOf(
       if (part === Part.Cell) cells = complex.add(cells, complex.scale(out, volume));
       else {
         const mean = entering(i);
-        const stays = { re: mean.re + (copy?.enteringDirect[i] ?? 0) - out.re, im: mean.im - out.im };
+        const stays = {
+          re: mean.re + (copy?.enteringDirect[i] ?? 0) + back * out.re,
+          im: mean.im + back * out.im,
+        };
         between = complex.add(between, complex.scale(stays, inflow));
       }
     }
-    return complex.add(cells, complex.divide(between, s));
+    return complex.add(cells, complex.multiply(between, of(complex.divide(complex.of(1), s))));
   };
-  /** Under `sizes` what is held is left out: the balance itself tells. */
   const read = (s: Complex, copy: number, re: Float64Array, im: Float64Array, of: Of): void => {
     for (const p of wantedOf[copy]) {
       const { node, lag } = parts[p];
       let value: Complex;
-      if (of === sizeOf && (node === undefined || (copy < copies.length && !roundInCopies))) value = complex.of(0);
-      else if (node === undefined) value = held(s, copies[copy]);
+      if (of === sizeOf && copy < copies.length && !roundInCopies) value = complex.of(0);
+      else if (node === undefined) value = held(s, copies[copy], of);
       else if (lag > 0) {
         const seen = { re: cRe[node] + (copies[copy]?.direct[node] ?? 0), im: cIm[node] };
         value = complex.multiply(seen, of(complex.divide(complex.of(1), { re: 1 + lag * s.re, im: lag * s.im })));
