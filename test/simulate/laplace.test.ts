@@ -94,7 +94,7 @@ test("random networks of tanks and tubes: as by the exact engine", () => {
         });
       });
     }),
-    { numRuns: 15, seed: 20261204 },
+    { numRuns: 15, seed: 20261204, endOnFailure: true },
   );
 });
 
@@ -117,7 +117,7 @@ test("random networks of all kinds: tracer is kept, F rises and is the integral 
         }
       });
     }),
-    { numRuns: 12, seed: 20261205 },
+    { numRuns: 12, seed: 20261205, endOnFailure: true },
   );
 });
 
