@@ -15,11 +15,20 @@ export interface Pockets {
   readonly exchange: number;
 }
 
+/** How a page of equations writes a block: G(s), its through-flow, and its keys by name. */
+export interface BlockSymbols {
+  readonly transfer: string;
+  readonly flow: string;
+  readonly key: (name: string) => string;
+}
+
 /**
  * A body that no cells, delays and joints spell out. It is known by what it does to tracer that passes at a steady flow
  * (m3/s): its transfer function G(s), s in 1/s, G(0) = 1.
  */
 export interface Block {
+  /** `transfer` in math, for a reviewer to read. */
+  readonly equation: (symbols: BlockSymbols) => string;
   /** For messages: "axial dispersion". */
   readonly is: string;
   readonly mixing: Mixing;
@@ -47,6 +56,8 @@ interface Body {
   readonly mixing: Mixing;
   readonly volume: number;
   readonly pockets: Pockets | undefined;
+  /** `response` in math, in the symbol z. */
+  readonly formula: (key: BlockSymbols["key"]) => string;
   /** G of the dimensionless z = s V/Q, one formula for numbers and series. */
   readonly response: <T>(z: T, algebra: Algebra<T>) => T;
 }
@@ -56,12 +67,14 @@ interface Body {
  * the way makes z = (s V + s q h / (q + s h)) / Q, h held in them and q exchanged with them.
  * @see K.H. Coats, B.D. Smith, Soc. Petrol. Eng. J. 4 (1964) 73-84 (from memory)
  */
-export function formulaBlock({ response, ...body }: Body): Block {
+export function formulaBlock({ response, formula, ...body }: Body): Block {
   const { volume, pockets } = body;
   const transfer = (s: Complex, flow: number): Complex =>
     response(complex.add(complex.scale(s, volume / flow), pocketTime(s, complex, pockets, flow)), complex);
   return {
     ...body,
+    equation: ({ transfer: g, flow, key }) =>
+      `${g} = ${formula(key)},\\qquad z = ${pockets ? pocketedTime(flow, key) : `s\\, ${key("volume")} / ${flow}`}`,
     transfer,
     delay: () => 0,
     undelayed: transfer,
@@ -71,6 +84,12 @@ export function formulaBlock({ response, ...body }: Body): Block {
       return response(series.add(series.scale(s, volume / flow), pocketTime(s, series, pockets, flow)), series);
     },
   };
+}
+
+/** z in math, with pockets. */
+function pocketedTime(flow: string, key: BlockSymbols["key"]): string {
+  const [held, exchange] = [key("stagnant.volume"), key("stagnant.exchange")];
+  return `\\frac{s}{${flow}}\\left(${key("volume")} + \\frac{${exchange}\\, ${held}}{${exchange} + s\\, ${held}}\\right)`;
 }
 
 const series = taylor(orders);

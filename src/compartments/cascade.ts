@@ -37,6 +37,7 @@ export const cascade: CompartmentKind = {
               mixing: { is: "segregated" },
               volume,
               pockets,
+              formula: (key) => `\\left(1 + z / ${key("tanks")}\\right)^{-${key("tanks")}}`,
               response: (z, { exp, log1p, scale }) => exp(scale(log1p(scale(z, 1 / tanks)), -tanks)),
             }),
           )

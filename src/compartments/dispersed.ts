@@ -36,7 +36,7 @@ export const dispersed: CompartmentKind = {
   spell(maker, of): Ports {
     const { volume, peclet } = of.values;
     const pockets = pocketsOf(of);
-    const response = of.words.ends === "open" ? openEnds(peclet) : closedEnds(peclet);
+    const ends = of.words.ends === "open" ? openEnds(peclet) : closedEnds(peclet);
     const node =
       volume > 0 || pockets
         ? maker.block(
@@ -45,7 +45,7 @@ export const dispersed: CompartmentKind = {
               mixing: { is: "dispersed", peclet },
               volume,
               pockets,
-              response,
+              ...ends,
             }),
           )
         : maker.joint();
@@ -55,14 +55,22 @@ export const dispersed: CompartmentKind = {
   aspect: () => 4,
 };
 
+type Ends = Pick<Parameters<typeof formulaBlock>[0], "formula" | "response">;
+
+const root = (peclet: string): string => `a = \\sqrt{1 + 4 z / ${peclet}}`;
+
 /**
  * G = 4 a e^(Pe/2) / ((1+a)^2 e^(a Pe/2) - (1-a)^2 e^(-a Pe/2)), a = sqrt(1 + 4 z/Pe), written in b = a Pe/2, so that no
  * digits are lost at small Pe and nothing overflows at large.
  * @see Danckwerts (1953); J.F. Wehner, R.H. Wilhelm, Chem. Eng. Sci. 6 (1956) 89-93
  */
-function closedEnds(peclet: number) {
+function closedEnds(peclet: number): Ends {
   const half = peclet / 2;
-  return <T>(z: T, algebra: Algebra<T>): T => {
+  const formula: Ends["formula"] = (key) => {
+    const pe = key("peclet");
+    return `\\frac{4 a\\, e^{${pe}/2}}{(1 + a)^2 e^{a ${pe}/2} - (1 - a)^2 e^{-a ${pe}/2}},\\qquad ${root(pe)}`;
+  };
+  const response = <T>(z: T, algebra: Algebra<T>): T => {
     const { of, add, subtract, multiply, divide, scale, exp, sqrt, size } = algebra;
     const squared = add(of(half * half), scale(z, peclet));
     const head = add(of(half), z);
@@ -76,12 +84,18 @@ function closedEnds(peclet: number) {
     const mixed = multiply(head, divide(subtract(of(1), fall), b));
     return divide(scale(forward, 2), add(add(of(1), fall), mixed));
   };
+  return { formula, response };
 }
 
 /** G = e^((1-a) Pe/2) / a, a = sqrt(1 + 4 z/Pe). Levenspiel & Smith (1957). */
-function openEnds(peclet: number) {
-  return <T>(z: T, { of, add, divide, scale, exp, sqrt }: Algebra<T>): T => {
+function openEnds(peclet: number): Ends {
+  const formula: Ends["formula"] = (key) => {
+    const pe = key("peclet");
+    return `\\frac{1}{a} e^{(1 - a) ${pe}/2},\\qquad ${root(pe)}`;
+  };
+  const response = <T>(z: T, { of, add, divide, scale, exp, sqrt }: Algebra<T>): T => {
     const a = sqrt(add(of(1), scale(z, 4 / peclet)));
     return divide(exp(divide(scale(z, -2), add(of(1), a))), a);
   };
+  return { formula, response };
 }

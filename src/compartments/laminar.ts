@@ -37,6 +37,8 @@ function laminarTube(volume: number): Block {
     mixing: { is: "segregated" },
     volume,
     pockets: undefined,
+    equation: ({ transfer, flow, key }) =>
+      `${transfer} = 2 E_3(z / 2),\\qquad E_3(x) = \\int_1^\\infty \\frac{e^{-x u}}{u^3}\\,du,\\qquad z = s\\, ${key("volume")} / ${flow}`,
     delay: (flow) => volume / flow / 2,
     undelayed,
     direct: () => 0,

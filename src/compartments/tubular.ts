@@ -45,6 +45,7 @@ function pocketedTube(volume: number, pockets: Pockets): Block {
       mixing: { is: "plug" },
       volume,
       pockets,
+      formula: () => "e^{-z}",
       response,
     }),
     delay: (flow) => volume / flow,

@@ -21,6 +21,8 @@ export interface ZoneTable {
   /** How far flows may be from balance, relative. */
   readonly tolerance: number;
   readonly names: ZoneNames;
+  /** Where the document names the two tables. */
+  readonly at?: { readonly volumes: Span; readonly flows: Span };
   /** The units that the tables use, for printing. */
   readonly units: readonly { readonly unit: Unit }[];
 }

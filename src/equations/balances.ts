@@ -1,6 +1,6 @@
 import { Part, type Plant, type PlantNode } from "../compile/plant.js";
 import { type Link, linksOf, type Where, whereOf } from "./links.js";
-import { concentration, spaceTime, texName, texQuantity, throughFlow, volume } from "./tex.js";
+import { concentration, held, keyOf, spaceTime, texName, texQuantity, throughFlow, volume } from "./tex.js";
 
 /** One term of a balance, with its sign and its place in the file. */
 export interface Term extends Where {
@@ -16,6 +16,8 @@ export interface Balance extends Where {
   readonly left: string;
   readonly tex: string;
   readonly terms: readonly Term[];
+  /** Of a body with a curve of its own: its transfer function, and what it holds. */
+  readonly also?: readonly string[];
 }
 
 /**
@@ -80,11 +82,19 @@ function joint({ plant, node: { name }, where, into }: Surrounded): Balance {
 }
 
 /** A body that is known by its transfer function, in Laplace space. */
-function body({ plant, node: { name }, where, into }: Surrounded): Balance {
+function body({ plant, node: { name, block }, where, into }: Surrounded): Balance {
   const hat = (c: string): string => `\\hat ${c}(s)`;
   const left = hat(concentration(name));
-  const tex = `${left} = G_{${texName(name)}}(s)\\; ${mixture(into, plant, hat)}`;
-  return { name, is: "body", left, tex, terms: into.map((l) => term("+", l, plant)), ...where };
+  const transfer = `G_{${texName(name)}}(s)`;
+  const flow = throughFlow(name);
+  const entering = mixture(into, plant, hat);
+  const tex = `${left} = ${transfer}\\; ${entering}`;
+  const key = (k: string): string => (k === "volume" ? volume(name) : keyOf(k, name));
+  const also = [
+    ...(block ? [block.equation({ transfer, flow, key })] : []),
+    `\\hat ${held(name)}(s) = \\frac{${flow}}{s}\\left(1 - ${transfer}\\right) ${entering}`,
+  ];
+  return { name, is: "body", left, tex, terms: into.map((l) => term("+", l, plant)), also, ...where };
 }
 
 /** The flow-weighted mean of what enters; of one stream what that brings. */

@@ -44,7 +44,10 @@ export function writtenStreams({ network, streams }: Plant): WrittenStream[] {
   return streams.map(({ from, to, flow }, i) => ({ from, to, flow, ...written[i] }));
 }
 
-/** Every link of a plant with its symbol and its line; what lies inside a compartment has the line of that. */
+/**
+ * Every flow between two nodes of a plant with its symbol and its line; what lies inside a compartment has the line of
+ * that. Flows inside that run side by side, as forward flow and backflow do, are one.
+ */
 export function linksOf(plant: Plant): Link[] {
   const waiting = new Map<string, Link[]>();
   const ends = (from: number, to: number, flow: number): string => `${from} ${to} ${flow}`;
@@ -65,15 +68,23 @@ export function linksOf(plant: Plant): Link[] {
     const key = ends(l.from, l.to, l.flow);
     waiting.set(key, [...(waiting.get(key) ?? []), l]);
   }
-  return Array.from(plant.flow, (flow, k) => {
+  const links: Link[] = [];
+  const inside = new Map<string, number>();
+  plant.flow.forEach((flow, k) => {
     const [from, to] = [plant.from[k], plant.to[k]];
-    return waiting.get(ends(from, to, flow))?.shift() ?? inner(plant, from, to, flow);
+    const written = waiting.get(ends(from, to, flow))?.shift();
+    const key = `${from} ${to}`;
+    const at = inside.get(key);
+    if (written) links.push(written);
+    else if (at !== undefined) links[at] = { ...links[at], flow: links[at].flow + flow };
+    else inside.set(key, links.push(inner(plant, from, to, flow)) - 1);
   });
+  return links;
 }
 
 function inner({ nodes, network }: Plant, from: number, to: number, flow: number): Link {
   const [a, b] = [nodes[from].name, nodes[to].name];
   const body = network.compartments.find((c) => b === c.name || b.startsWith(`${c.name}.`));
   const says = `inside ${body?.name ?? network.title}`;
-  return { from, to, flow, symbol: streamFlow(a, b), says, ...whereOf((body ?? network).at) };
+  return { from, to, flow, symbol: streamFlow(a, b), says, ...whereOf(body?.zones?.at?.flows ?? (body ?? network).at) };
 }

@@ -4,18 +4,10 @@ import { dimensions } from "../units/dimension.js";
 import { formatNumber, formatQuantity } from "../units/format.js";
 import { differenceInUnit, inUnit } from "../units/unit.js";
 import { type Balance, balancesOf } from "./balances.js";
+import { innerFlow, innerVolume } from "./inside.js";
 import { linksOf, type Where, type WrittenStream, whereOf, writtenStreams } from "./links.js";
-import {
-  concentration,
-  spaceTime,
-  streamFlow,
-  texExpression,
-  texName,
-  texQuantity,
-  texValueName,
-  throughFlow,
-  volume,
-} from "./tex.js";
+import { keyOf, streamFlow, texExpression, texValueName, throughFlow, volume } from "./tex.js";
+import { totals } from "./totals.js";
 
 /** The compiled balances of a plant as a Markdown page with math, for a reviewer: symbols, flows, volumes, one equation per state. */
 export function equationsMarkdown(plant: Plant, balances: readonly Balance[] = balancesOf(plant)): string {
@@ -97,13 +89,18 @@ function flowsTable(plant: Plant): string {
         say(feeds[i].flow),
         at(whereOf(f.flow.at)),
       ]),
+      ...repeatInlets(plant).map((n) => [
+        math(`${throughFlow(n.name)} = ${throughFlow(n.first)}`),
+        say(n.flow),
+        at(whereOf(n.at)),
+      ]),
       ...network.compartments.flatMap((c) =>
         arriving(c.name) === ""
           ? []
           : [[math(`${throughFlow(c.name)} = ${arriving(c.name)}`), say(through(c.name)), at(whereOf(c.at))]],
       ),
       ...streams.map((s) => [math(streamRule(s, streams)), say(s.flow), at(s)]),
-      ...inside.map((l) => [math(l.symbol), say(l.flow), at(l)]),
+      ...inside.map((l) => [math(innerFlow(plant, l)), say(l.flow), at(l)]),
       ...network.outlets.map((o, i) => [
         math(`${throughFlow(o.name)} = ${arriving(o.name)}`),
         say(outlets[i].flow),
@@ -112,6 +109,20 @@ function flowsTable(plant: Plant): string {
     ],
   );
 }
+
+/** Flows into parts with repeats that values use: all repeats have what enters the first. */
+function repeatInlets({ network: { names, groups, compartments }, env }: Plant) {
+  const bodies = new Set(compartments.map((c) => c.name));
+  return names.flatMap(({ name: full, role, slot, at }) => {
+    const name = full.replace(/\.flow$/, "");
+    if (role !== "inflow" || bodies.has(name)) return [];
+    const group = groups.find((g) => name.startsWith(`${g.name}.`) && g.inlets.some((i) => portOf(i) === portOf(name)));
+    const first = group?.inlets.find((i) => portOf(i) === portOf(name));
+    return first === undefined ? [] : [{ name, first, flow: env[slot], at }];
+  });
+}
+
+const portOf = (place: string): string => place.slice(place.lastIndexOf(".") + 1);
 
 /** How much a stream carries, as the file decides it. */
 function streamRule({ from, to, is }: WrittenStream, all: readonly WrittenStream[]): string {
@@ -135,13 +146,18 @@ function bodiesTable(plant: Plant): string {
   const say = (v: number): string => formatQuantity(v, unit, 6);
   const bodies = network.compartments.flatMap((c) => [
     ...Object.entries(c.values).map(([key, v]) => {
-      const left = key === "volume" ? volume(c.name) : `\\text{${key}}_{${texName(c.name)}}`;
+      const left = key === "volume" ? volume(c.name) : keyOf(key, c.name);
       const value = formatQuantity(v.of(env), v.unit ?? network.units.unitFor(v.dimension), 6);
       return [math(`${left} = ${texExpression(v.expression)}`), value, c.kind.name, at(whereOf(v.at))];
     }),
     ...nodes
       .filter((n) => n.name.startsWith(`${c.name}.`) && n.volume > 0)
-      .map((n) => [math(volume(n.name)), say(n.volume), `part of ${inText(c.name)}`, at(whereOf(c.at))]),
+      .map((n) => [
+        math(innerVolume(plant, n)),
+        say(n.volume),
+        `part of ${inText(c.name)}`,
+        at(whereOf(c.zones?.at?.volumes ?? c.at)),
+      ]),
   ]);
   const whole = [math("V"), say(total.total), total.dead > 0 ? `${say(total.dead)} of it dead` : "all", ""];
   return table(["symbol", "value", "kind", "line"], [...bodies, whole]);
@@ -150,34 +166,7 @@ function bodiesTable(plant: Plant): string {
 const equation =
   (at: (where: Where) => string) =>
   (balance: Balance): string => {
-    const { name, tex, terms } = balance;
+    const { name, tex, terms, also = [] } = balance;
     const rows = terms.map((t) => [math(t.tex), inText(t.says), at(t)]);
-    return `**${inText(name)}** (${at(balance)})\n\n$$${tex}$$\n\n${table(["term", "from", "line"], rows)}`;
+    return `**${inText(name)}** (${at(balance)})\n\n${[tex, ...also].map((t) => `$$${t}$$`).join("\n\n")}\n\n${table(["term", "from", "line"], rows)}`;
   };
-
-function totals(plant: Plant, balances: readonly Balance[]): string {
-  const { network, feeds, outlets, volume: v } = plant;
-  const sum = (parts: readonly string[]): string => (parts.length > 0 ? parts.join(" + ") : "0");
-  const flow = network.units.unitFor(dimensions.flow);
-  const q = feeds.reduce((s, f) => s + f.flow, 0);
-  const out = outlets.reduce((s, o) => s + o.flow, 0);
-  const states = balances.filter((b) => b.is === "state");
-  const delays = balances.filter((b) => b.is === "delay" || b.is === "body");
-  const held = [
-    ...states.map((b) => `${volume(b.name)} ${concentration(b.name)}`),
-    ...delays.map((b) =>
-      b.is === "delay"
-        ? `${throughFlow(b.name)} \\int_{t}^{t + ${spaceTime(b.name)}} ${concentration(b.name)}(t')\\,dt'`
-        : `m_{\\text{${b.name}}}`,
-    ),
-  ];
-  const carried = (ports: readonly { name: string }[]): string =>
-    sum(ports.map((p) => `${throughFlow(p.name)} ${concentration(p.name)}`));
-  const lines = [
-    `Liquid: $${sum(feeds.map((f) => throughFlow(f.name)))} = ${sum(outlets.map((o) => throughFlow(o.name)))}$, that is ${formatQuantity(q, flow, 6)} in and ${formatQuantity(out, flow, 6)} out.`,
-    `Substance: $\\frac{d}{dt}\\left(${sum(held)}\\right) = ${carried(feeds)} - ${outlets.length > 1 ? `\\left(${carried(outlets)}\\right)` : carried(outlets)}$, which is the sum of all balances above.`,
-  ];
-  if (q > 0)
-    lines.push(`Mean time: $\\tau = V_\\text{active} / Q = ${texQuantity(v.active / q, network.units.time)}$.`);
-  return lines.join("\n\n");
-}

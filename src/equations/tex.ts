@@ -10,6 +10,9 @@ export const concentration = (node: string): string => `c_{${texName(node)}}`;
 export const volume = (node: string): string => `V_{${texName(node)}}`;
 export const throughFlow = (place: string): string => `Q_{${texName(place)}}`;
 export const spaceTime = (node: string): string => `\\tau_{${texName(node)}}`;
+/** A key of a compartment, and the amount of a substance that a body holds. */
+export const keyOf = (key: string, place: string): string => `\\text{${key}}_{${texName(place)}}`;
+export const held = (node: string): string => `m_{${texName(node)}}`;
 
 /** The flow from one place to another; both ways where they exchange. */
 export const streamFlow = (from: string, to: string, bothWays = false): string =>

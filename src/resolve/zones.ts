@@ -3,7 +3,6 @@ import type { Stream } from "../model/network.js";
 import type { Value } from "../model/value.js";
 import type { Report } from "../problems/report.js";
 import type { Files } from "../read/files.js";
-import { openTable } from "../read/open.js";
 import { beside } from "../read/paths.js";
 import type { ColumnName } from "../read/table.js";
 import { child, type MapNode, type Tree, textOf } from "../read/tree.js";
@@ -40,7 +39,7 @@ export function resolveZones(
       const named = column(child(spec, role), child(spec, role) ?? node);
       return named && { ...named, unit: role === amount ? unit : undefined };
     });
-    const table = openColumns(spec, asked, files, report);
+    const table = openTable(spec, asked, files, report);
     return table && unit ? { table, unit } : undefined;
   };
   const volumes = open("volumes", ["id", "volume"], "volume", dimensions.volume);
@@ -48,7 +47,7 @@ export function resolveZones(
   const cells = volumes && readCells(volumes.table, volumes.unit.factor, report);
   const rows = cells && flows && readFlows(flows.table, cells, flows.unit.factor, report);
   if (!rows) return undefined;
-  return balanceZones(
+  const balanced = balanceZones(
     cells,
     rows,
     {
@@ -61,9 +60,11 @@ export function resolveZones(
     },
     report,
   );
+  const line = (key: string): Span => node.entries.find((e) => e.key.text === key)?.key.at ?? at;
+  return balanced && { ...balanced, at: { volumes: line("volumes"), flows: line("flows") } };
 }
 
-function openColumns(
+function openTable(
   spec: Tree | undefined,
   asked: readonly (ColumnName | undefined)[],
   files: Files,
@@ -73,7 +74,8 @@ function openColumns(
   const file = textOf(spec, "file");
   if (!fileNode || file === undefined) return undefined;
   const path = beside(fileNode.at.source.path, file);
-  const content = openTable(path, { text: file, at: fileNode.at }, files, report);
+  const content = files.read(path);
+  if (content === undefined) report("file-missing", fileNode.at, { file });
   const columns = asked.filter((c) => c !== undefined);
   if (content === undefined || columns.length < asked.length) return undefined;
   return openWideCsv(path, content, columns, csvOptions(child(spec, "csv")), report);

@@ -37,7 +37,7 @@ export async function backmix(
   };
   const status = await run(args, {
     read,
-    obstacle: () => undefined,
+    exists: (path) => read(path) !== undefined,
     list: (path) => listed(path, files),
     write: (path, content) => void written.set(path, content),
     makeFolder: () => {},

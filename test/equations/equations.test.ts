@@ -115,6 +115,89 @@ describe("the page", () => {
   });
 });
 
+describe("bodies of more than one node, and of none", () => {
+  const plant = plantOf(`network: Bodies with more to say
+format: 1
+feeds: {f: {flow: 6 L/min, to: a}}
+compartments:
+  a: {kind: stirred, volume: 30 L, repeat: 3, backflow: 50 %, stagnant: {volume: 6 L, exchange: 1.5 L/min}, to: b}
+  b: {kind: dispersed, volume: 12 L, peclet: 5, ends: open, to: {c: 50 %, d: rest}}
+  c: {kind: laminar, volume: 10 L, to: g}
+  d: {kind: cascade, volume: 10 L, tanks: 2.5, stagnant: {volume: 6 L, exchange: 1 L/min}, to: g}
+  g: {kind: dispersed, volume: 10 L, peclet: 20, to: out}
+outlets: [out]
+`);
+  const page = equationsMarkdown(plant);
+
+  test("the page", async () => {
+    await expect(`${page}\n`).toMatchFileSnapshot("bodies.txt");
+  });
+
+  test("forward flow and backflow between two tanks are one flow", () => {
+    const rows = page.split("\n").filter((l) => l.startsWith("| $Q_{\\text{a.1}\\to\\text{a.2}}$ |"));
+    expect(rows).toEqual(["| $Q_{\\text{a.1}\\to\\text{a.2}}$ | 9 L/min | L5 |"]);
+    const second = balancesOf(plant).find((b) => b.name === "a.2") as Balance;
+    expect(new Set(second.terms.map((t) => t.tex)).size).toBe(second.terms.length);
+  });
+
+  test("no flow gets lost in that", () => {
+    const into = (links: readonly { to: number; flow: number }[]): number[] => {
+      const sums = plant.nodes.map(() => 0);
+      for (const l of links) sums[l.to] += l.flow;
+      return sums;
+    };
+    const all = Array.from(plant.flow, (flow, k) => ({ to: plant.to[k], flow }));
+    for (const [i, q] of into(linksOf(plant)).entries()) expect(q).toBeCloseTo(into(all)[i], 18);
+  });
+
+  test("inner volumes and exchanges by the keys that they come from", () => {
+    expect(page).toContain("$V_{\\text{a.2}} = V_{\\text{a}} / 3$");
+    expect(page).toContain("$V_{\\text{a.2.stagnant}} = \\text{stagnant.volume}_{\\text{a}} / 3$");
+    expect(page).toContain("= \\text{stagnant.exchange}_{\\text{a}} / 3$ | 0.5 L/min");
+  });
+
+  test("the mean time is the exact one", () => {
+    // 36/6 for a, (1 + 2/5) 12/6 for b, then 10/3 or 16/3 on half the flow each, and 10/6: 6 + 2.8 + 13/3 + 5/3 min.
+    expect(page).toContain("\\bar t = 14.8\\ \\text{min}");
+    expect(page).toContain("V_\\text{active} / Q = 14\\ \\text{min}");
+  });
+
+  test("every symbol of a body's curve is on the page", () => {
+    for (const b of balancesOf(plant).filter((x) => x.is === "body")) {
+      expect(b.also?.[0]).toContain(`G_{\\text{${b.name}}}(s) =`);
+      expect(b.also?.[1]).toContain(`\\hat m_{\\text{${b.name}}}(s) =`);
+    }
+    expect(page).toContain("\\text{peclet}_{\\text{b}} = 5");
+  });
+});
+
+test("the flow into a part with repeats is that into the first", () => {
+  const core = `network: Core
+format: 1
+feeds: {feed: {flow: 1 L/min, to: tank}}
+compartments:
+  tank: {kind: stirred, volume: 10 L, to: {loop: 3 * feed.flow, out: rest}}
+  loop: {kind: tubular, volume: 2 L, to: tank}
+outlets: [out]
+`;
+  const { document } = parseNetwork(
+    `network: Row\nformat: 1\nfeeds: {f: {flow: 6 L/min, to: bed}}\ncompartments: {bed: {kind: part, use: core.yaml, repeat: 2, to: out}}\noutlets: [out]\n`,
+    { path: "row.yaml", read: () => core },
+  );
+  const page = equationsMarkdown(compile(document as NonNullable<typeof document>).plant as Plant);
+  expect(page).toContain("| $Q_{\\text{bed.feed}} = Q_{\\text{bed.1.feed}}$ | 6 L/min |");
+});
+
+test("flows between the cells of a table are said to come from its line", () => {
+  const path = "networks/zoned/lattice.yaml";
+  const text = readFileSync(path, "utf8");
+  const { document } = parseNetwork(text, { path, read: (file) => readFileSync(file) });
+  const plant = compile(document as NonNullable<typeof document>).plant as Plant;
+  const inside = linksOf(plant).filter((l) => l.says.startsWith("inside "));
+  expect(inside.length).toBeGreaterThan(10);
+  for (const l of inside) expect(lineIn(text, l.line)).toContain("    flows:");
+});
+
 test.each([
   ["total - (riser - lost)", "\\text{total} - \\left(\\text{riser} - \\text{lost}\\right)"],
   ["0.15 * feed.flow", "0.15 \\cdot Q_{\\text{feed}}"],

@@ -37,7 +37,7 @@ export async function faultOf(
     const read = (file: string): Uint8Array | undefined => (file === path ? bytes : corpus.get(file));
     const io = {
       read,
-      obstacle: () => undefined,
+      exists: (file: string) => read(file) !== undefined,
       list: () => undefined,
       makeFolder: () => undefined,
       write: (file: string) => {
