@@ -60,7 +60,7 @@ function open(file: string, { inputs }: Context): Opened {
   if (!kind || !tree || hasErrors(problems)) throw new InputError(problems);
   inputs.accept(problems);
   const is = kind === "change" ? "network" : kind;
-  const files = filesOf(file, { read: inputs.read });
+  const files = filesOf(file, inputs.options(file));
   return { kind: is, tree: wholeDocument(tree, is, files, collector().report) ?? tree, network };
 }
 

@@ -1,4 +1,5 @@
 import type { Parsed, ParseOptions, Read } from "../parse/parsed.js";
+import type { Obstacle } from "../problems/obstacle.js";
 import type { Problem } from "../problems/problem.js";
 import { hasErrors, problem } from "../problems/report.js";
 import { decodeText } from "../read/decode.js";
@@ -14,12 +15,17 @@ export class Inputs {
   allowOutside = false;
   private readonly contents = new Map<string, string | Uint8Array | undefined>();
 
-  constructor(private readonly io: Pick<Io, "read" | "exists" | "real" | "size" | "library">) {}
+  constructor(private readonly io: Pick<Io, "read" | "obstacle" | "real" | "size" | "library">) {}
 
+  /** What a document names: files, no streams. */
   readonly read: Read = (path) => {
-    if (!this.contents.has(path)) this.contents.set(path, this.io.read(path));
+    if (!this.contents.has(path)) this.contents.set(path, this.obstacle(path) ? undefined : this.io.read(path));
     return this.contents.get(path);
   };
+
+  private readonly obstacle = (path: string): Obstacle | undefined =>
+    // Standard input is on the command line or nowhere.
+    path === "-" ? "device" : this.io.obstacle(path);
 
   /** How a document on the command line is read, and what it names. */
   options(path: string): ParseOptions & { readonly path: string } {
@@ -27,6 +33,7 @@ export class Inputs {
     return {
       path,
       read: this.read,
+      obstacle: this.obstacle,
       allowOutside: this.allowOutside,
       ...(real ? { real } : {}),
       ...(size ? { size } : {}),
@@ -34,20 +41,18 @@ export class Inputs {
     };
   }
 
-  /** Text of a file named on the command line, or the reason why there is none. */
+  /** Text of a file or stream named on the command line, or the reason why there is none. */
   text(path: string): string | Problem {
+    const tooLarge = (size: number): Problem =>
+      problem("file-too-large", at(path), { megabytes: Math.ceil(size / 1024 ** 2) });
     const size = this.io.size?.(path) ?? 0;
-    if (size > largestDocument) return problem("file-too-large", at(path), { megabytes: Math.ceil(size / 1024 ** 2) });
-    const content = this.read(path);
+    if (size > largestDocument) return tooLarge(size);
+    if (!this.contents.has(path)) this.contents.set(path, this.io.read(path, largestDocument));
+    const content = this.contents.get(path);
+    if (content !== undefined && content.length > largestDocument) return tooLarge(content.length);
     if (content !== undefined) return decodeText(content);
-    return this.io.exists(path)
-      ? onFile(path, "file-unreadable", `'${path}' cannot be read`, "name a file, not a folder, that may be read")
-      : onFile(
-          path,
-          "file-missing",
-          `there is no file '${path}'`,
-          "correct the path; it is relative to the current folder",
-        );
+    const why = this.io.obstacle(path);
+    return why ? problem("file-unreadable", at(path), { file: path, why }) : missing(path);
   }
 
   /**
@@ -78,12 +83,12 @@ export class Inputs {
   }
 }
 
-/** A problem with a file as a whole, which has no line to show. */
-const onFile = (path: string, code: string, message: string, fix: string): Problem => ({
-  code,
+/** A file as a whole has no line to show. */
+const missing = (path: string): Problem => ({
+  code: "file-missing",
   severity: "error",
-  message,
-  fix,
+  message: `there is no file '${path}'`,
+  fix: "correct the path; it is relative to the current folder",
   at: at(path),
 });
 

@@ -4,8 +4,6 @@ import {
   existsSync,
   mkdirSync,
   readdirSync,
-  readFileSync,
-  readSync,
   realpathSync,
   renameSync,
   rmSync,
@@ -13,6 +11,9 @@ import {
   writeFileSync,
 } from "node:fs";
 import { basename, dirname, join, resolve } from "node:path";
+import type { Obstacle } from "../problems/obstacle.js";
+import { largestTable } from "../read/files.js";
+import { obstacleAt, readRegular, readStream, statOf, streamNumber } from "./read-file.js";
 import { UsageError } from "./usage.js";
 
 /** 0 done; 1 input wrong; 2 wrong usage; 3 numerics did not converge, or a fault of ours; 130 interrupted. */
@@ -20,12 +21,17 @@ export type ExitStatus = 0 | 1 | 2 | 3 | 130;
 
 /** The world as a command sees it. The only way from the program to files and terminal. */
 export interface Io {
-  /** The content of a file by its path from the current folder, `-` for standard input; undefined where nothing can be read. */
-  read(path: string): Uint8Array | string | undefined;
-  /** True where something is at the path, readable or not. */
-  exists(path: string): boolean;
-  /** Files and folders in a folder; undefined where it cannot be listed. A link to a folder is no folder. */
-  list(path: string): readonly { readonly name: string; readonly is: "file" | "folder" | "other" }[] | undefined;
+  /**
+   * The content of a file by its path from the current folder, of standard input for `-`, or of another stream that is
+   * open already; undefined where nothing can be read. Of more than `most` bytes, so many and one more.
+   */
+  read(path: string, most?: number): Uint8Array | string | undefined;
+  /** Why what is at a path cannot be read as a file; undefined where it can, or where nothing is there. */
+  obstacle(path: string): Obstacle | undefined;
+  /** Files and folders in a folder; undefined where it cannot be listed. A link to a folder is no folder, one to nowhere is lost. */
+  list(
+    path: string,
+  ): readonly { readonly name: string; readonly is: "file" | "folder" | "other" | "lost" }[] | undefined;
   /** What a path leads to, links followed, with forward slashes from the root of the machine. */
   real?(path: string): string;
   /** Bytes of a file; undefined where there is none. */
@@ -51,31 +57,26 @@ export interface Io {
 /** Files of this machine, relative to `cwd`. */
 export function files(
   cwd: string,
-): Pick<Io, "read" | "exists" | "list" | "real" | "size" | "library" | "write" | "makeFolder"> {
+): Pick<Io, "read" | "obstacle" | "list" | "real" | "size" | "library" | "write" | "makeFolder"> {
   const real = (path: string): string => slashed(realPath(resolve(cwd, path)));
   return {
     real,
-    size: (path) => statSync(resolve(cwd, path), { throwIfNoEntry: false })?.size,
+    size: (path) => statOf(resolve(cwd, path))?.size,
     library(path) {
       const own = path === "-" ? real(".") : real(dirname(real(path)));
       const here = real(".");
       return repositoryAbove(own) ?? (`${own}/`.startsWith(`${here}/`) ? here : own);
     },
-    read(path) {
-      try {
-        return path === "-" ? standardInput() : readFileSync(resolve(cwd, path));
-      } catch {
-        return undefined;
-      }
+    read(path, most = largestTable) {
+      const stream = streamNumber(path);
+      return stream === undefined ? readRegular(resolve(cwd, path), most) : readStream(stream, most);
     },
-    exists(path) {
-      return statSync(resolve(cwd, path), { throwIfNoEntry: false }) !== undefined;
-    },
+    obstacle: (path) => obstacleAt(resolve(cwd, path)),
     list(path) {
       try {
         return readdirSync(resolve(cwd, path), { withFileTypes: true }).map((entry) => ({
           name: entry.name,
-          is: entry.isDirectory() ? "folder" : isFile(resolve(cwd, path, entry.name)) ? "file" : "other",
+          is: entry.isDirectory() ? "folder" : leadsTo(resolve(cwd, path, entry.name)),
         }));
       } catch {
         return undefined;
@@ -146,7 +147,10 @@ function repositoryAbove(folder: string): string | undefined {
 const slashed = (path: string): string => path.replace(/\\/g, "/");
 
 /** A link counts as what it leads to. */
-const isFile = (path: string): boolean => statSync(path, { throwIfNoEntry: false })?.isFile() === true;
+function leadsTo(path: string): "file" | "other" | "lost" {
+  const found = statOf(path);
+  return !found ? "lost" : found.isFile() ? "file" : "other";
+}
 
 /** Takes a draft away, where there is one. */
 function discard(draft: string): void {
@@ -154,27 +158,6 @@ function discard(draft: string): void {
     rmSync(draft, { force: true });
   } catch {
     // There never was one: its folder is no folder.
-  }
-}
-
-const chunkSize = 65_536;
-
-/** All of standard input. A pipe that does not block says EAGAIN while it is empty: that is no end of it. */
-function standardInput(): Uint8Array {
-  const chunks: Uint8Array[] = [];
-  const pause = new Int32Array(new SharedArrayBuffer(4));
-  for (;;) {
-    const chunk = Buffer.alloc(chunkSize);
-    try {
-      const size = readSync(0, chunk);
-      if (size === 0) return Buffer.concat(chunks);
-      chunks.push(chunk.subarray(0, size));
-    } catch (e) {
-      const { code } = e as NodeJS.ErrnoException;
-      if (code === "EOF") return Buffer.concat(chunks);
-      if (code !== "EAGAIN") throw e;
-      Atomics.wait(pause, 0, 0, 10);
-    }
   }
 }
 

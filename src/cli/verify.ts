@@ -80,6 +80,7 @@ function documentsUnder(folder: string, io: Io): { files: string[]; skipped: str
       const inside = path === "." ? name : `${path.replace(/[/\\]+$/, "")}/${name}`;
       if (is === "folder" && (name === "node_modules" || name.startsWith("."))) skipped.push(inside);
       else if (is === "folder") look(inside);
+      else if (is === "lost") skipped.push(inside);
       else if (/\.ya?ml$/i.test(name)) (is === "file" ? files : skipped).push(inside);
     }
   };

@@ -29,12 +29,16 @@ type Entry = CatalogueEntry<unknown>;
 function problemText(code: string, { severity, says, fix, example }: Entry, broken: readonly Broken[]): string {
   const heading = `#### ${code}`;
   const shown = showing(code, broken);
-  if (shown) return parts(heading, block("yaml", shown.document), block("text", shown.printed));
+  if (shown) return parts(heading, block("yaml", visible(shown.document)), block("text", shown.printed));
   if (example === undefined) return parts(heading, `(${severity})`);
   const sign = severity === "warning" ? "warning " : "";
   const way = typeof fix === "string" ? fix : fix(example);
   return parts(heading, block("text", `${sign}${code}: ${says(example)}\n  fix: ${way}`));
 }
+
+/** Characters that no text editor shows, as escapes: the page is to stay a text. */
+const visible = (text: string): string =>
+  text.replace(/[^\P{Cc}\t\n]/gu, (c) => `\\x${(c.codePointAt(0) ?? 0).toString(16).padStart(2, "0")}`);
 
 /** The broken document named by the code, else by the code and a word more; it must show the code. */
 export function showing(code: string, broken: readonly Broken[]): Broken | undefined {

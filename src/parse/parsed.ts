@@ -1,3 +1,4 @@
+import type { Obstacle } from "../problems/obstacle.js";
 import type { Problem } from "../problems/problem.js";
 import { collector, hasErrors, type Report } from "../problems/report.js";
 import { type Files, usualRoot } from "../read/files.js";
@@ -26,11 +27,14 @@ export interface ParseOptions {
   readonly real?: (path: string) => string;
   /** Bytes of a file, where they can be told without reading it: too large a document is not read at all. */
   readonly size?: (path: string) => number | undefined;
+  /** Why what is at a path cannot be read, where something is there. */
+  readonly obstacle?: (path: string) => Obstacle | undefined;
 }
 
 /** How a document reaches the files that it names. */
-export function filesOf(path: string, { read = nothingToRead, root, allowOutside, real, size }: ParseOptions): Files {
-  return { read, root: allowOutside ? undefined : (root ?? usualRoot(path)), real, size };
+export function filesOf(path: string, options: ParseOptions): Files {
+  const { read = nothingToRead, root, allowOutside, real, size, obstacle } = options;
+  return { read, root: allowOutside ? undefined : (root ?? usualRoot(path)), real, size, obstacle };
 }
 
 /** The tree of a text, read once for who must tell first what document it is. */
@@ -81,7 +85,7 @@ export function parseDocument<T>(
     const more = collector();
     glance(tree, more.report);
     // What stands at a place that is already found fault with is an echo.
-    problems.push(...more.problems.filter((p) => !problems.some((q) => overlap(p.at, q.at))));
+    problems.push(...more.problems.filter((p) => !problems.some((q) => overlap(p.at, q.at) || isEmptyValue(p.at, q))));
   }
   return { document: hasErrors(problems) ? undefined : document, problems: inOrder(distinct(problems)) };
 }
@@ -95,7 +99,14 @@ function distinct(problems: readonly Problem[]): Problem[] {
   });
 }
 
-const overlap = (a: Span, b: Span): boolean => a.from < b.to && b.from < a.to;
+const overlap = (a: Span, b: Span): boolean => a.source.path === b.source.path && a.from < b.to && b.from < a.to;
+
+/** Is a place the value that a key was found not to have: `~` of `volume: ~`? */
+const isEmptyValue = ({ source, from }: Span, { code, at: key }: Problem): boolean =>
+  code === "empty-value" &&
+  source.path === key.source.path &&
+  from >= key.to &&
+  /^\s*:\s*$/.test(source.text.slice(key.to, from));
 
 /** File by file in the order first met, each in the order of its lines. */
 function inOrder(problems: readonly Problem[]): Problem[] {

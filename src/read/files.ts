@@ -1,3 +1,4 @@
+import type { Obstacle } from "../problems/obstacle.js";
 import { beside, normalise } from "./paths.js";
 
 /** How documents reach the files that they name. */
@@ -10,10 +11,15 @@ export interface Files {
   readonly real?: ((path: string) => string) | undefined;
   /** Bytes, where they can be told without reading the file. */
   readonly size?: ((path: string) => number | undefined) | undefined;
+  /** Why what is at a path cannot be read, where something is there. */
+  readonly obstacle?: ((path: string) => Obstacle | undefined) | undefined;
 }
 
 /** A document may have so many bytes. */
 export const largestDocument = 10 * 1024 * 1024;
+
+/** And a table so many: what a message can still show of a file is less than the longest string. */
+export const largestTable = 500 * 1024 * 1024;
 
 /** Is a file within the folder that parts and bases may not leave? Links count as what they lead to. */
 export function isInside({ root, real = normalise }: Files, file: string): boolean {

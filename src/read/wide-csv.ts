@@ -25,11 +25,6 @@ export interface WideCsv {
   span(from: number, to: number): Span;
 }
 
-const megabyte = 1024 * 1024;
-
-/** What a message can still show of a file is less than the longest string. */
-const largest = 500 * megabyte;
-
 /** The top of a table, in which its form is looked for, bytes. */
 const topSize = 65_536;
 
@@ -41,11 +36,6 @@ export function openWideCsv(
   options: CsvOptions,
   report: Report,
 ): WideCsv | undefined {
-  if (content.length > largest) {
-    const at = { source: { path, text: "" }, from: 0, to: 0 };
-    report("table-too-large", at, { file: path, megabytes: Math.ceil(content.length / megabyte) });
-    return undefined;
-  }
   const bytes = plainBytes(content);
   const source = lazySource(path, bytes);
   const top = topOf(bytes);

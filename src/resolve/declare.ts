@@ -5,6 +5,7 @@ import { nearest } from "../text/nearest.js";
 import type { Span } from "../text/source.js";
 import { type Dimension, dimensions } from "../units/dimension.js";
 import { checkName } from "./check-name.js";
+import { lostParts } from "./lost.js";
 import type { Binding, Instance } from "./part.js";
 
 /** A name with a value as some document declares it, before the value is looked at. */
@@ -29,7 +30,11 @@ export function declareNames(instances: readonly Instance[], report: Report): De
   const used = new Set<Binding>();
   for (const instance of instances) declared.push(...declareIn(instance, used, report));
   const all = new Set<Binding>(instances.flatMap((i) => [...i.bindings.values()]));
-  for (const binding of all) if (!used.has(binding)) refuseBinding(binding, declared, report);
+  const lost = instances.flatMap((i) => [...lostParts(i)].map((name) => `${i.prefix}${name}.`));
+  for (const binding of all) {
+    const name = `${binding.prefix}${binding.part}.${binding.key.text}`;
+    if (!used.has(binding) && !lost.some((prefix) => name.startsWith(prefix))) refuseBinding(binding, declared, report);
+  }
   return declared;
 }
 

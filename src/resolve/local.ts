@@ -4,7 +4,8 @@ import type { Files } from "../read/files.js";
 import { child, entriesOf, itemsOf } from "../read/tree.js";
 import { checkName } from "./check-name.js";
 import { resolveCompartment } from "./compartment.js";
-import { type Instance, isPart, type Part } from "./part.js";
+import { lostParts } from "./lost.js";
+import type { Instance, Part } from "./part.js";
 import { aimStreams, isPlace, type PartWays, partWays, unfedInlets } from "./ports.js";
 import { resolveStreams } from "./streams.js";
 import type { Scope } from "./value.js";
@@ -51,12 +52,13 @@ export function resolveLocal(
       toAt: child(value, "to")?.at ?? key.at,
     };
   });
+  const lost = lostParts(instance);
   const bodies = entriesOf(child(tree, "compartments")).flatMap(({ key, value }): (Compartment | PlacedPart)[] => {
     checkName(key, report);
     const part = parts.get(key.text);
     if (part) return [{ part, ways: partWays(part, scope, report) }];
     // A part that could not be opened is told already.
-    if (value.type !== "map" || isPart(value)) return [];
+    if (value.type !== "map" || lost.has(key.text)) return [];
     const body = resolveCompartment(key.text, key.at, value, scope, env, files, report);
     return body ? [body] : [];
   });
@@ -71,6 +73,7 @@ export function resolveLocal(
     feeds: new Map(feeds.map((f) => [f.name, f])),
     bodies: bodies.flatMap((b) => ("part" in b ? [] : [b])),
     parts,
+    lost,
     outlets: outlets.map((o) => o.name),
   };
   const fed = new Set<string>();
@@ -88,8 +91,8 @@ export function resolveLocal(
     }),
     outlets,
   };
-  // A slip in the name of a part is not that nothing enters it, too.
+  // A slip in the name of a part is not that nothing enters it, too; nor is a part that would have fed it.
   const slip = parts.size > 0 && [...fed].some((to) => !isPlace(to, places));
-  if (!slip) for (const part of parts.values()) unfedInlets(part, fed, report);
+  if (!slip && lost.size === 0) for (const part of parts.values()) unfedInlets(part, fed, report);
   return local;
 }

@@ -2,6 +2,8 @@ import type { Report } from "../problems/report.js";
 import { clockFormat } from "../read/clock.js";
 import type { CsvOptions } from "../read/csv.js";
 import { decodeText } from "../read/decode.js";
+import type { Files } from "../read/files.js";
+import { openTable } from "../read/open.js";
 import { beside } from "../read/paths.js";
 import { type ReadSeries, readSeries } from "../read/series.js";
 import { child, itemsOf, type MapNode, type Tree, textOf } from "../read/tree.js";
@@ -10,11 +12,6 @@ import { parseUnit } from "../units/parse.js";
 import type { Unit } from "../units/unit.js";
 import { resolveDetectorUnit } from "./detector.js";
 import { resolveUnit } from "./value.js";
-
-/** What gives the text or the bytes of a file that a document names; undefined where there is none. */
-export interface Files {
-  read(path: string): string | Uint8Array | undefined;
-}
 
 /** Where the table of a reading is, how its clock is written, and what it holds. */
 export interface ResolvedTable extends ReadSeries {
@@ -30,14 +27,13 @@ export function resolveTable(node: MapNode, anyWord: boolean, files: Files, repo
   const file = textOf(node, "file");
   if (!fileNode || file === undefined) return undefined;
   const full = beside(fileNode.at.source.path, file);
-  const content = files.read(full);
+  const content = openTable(full, { text: file, at: fileNode.at }, files, report);
   const time = column(child(node, "time"), fileNode);
   const value = column(child(node, "value"), fileNode);
   const format = resolveFormat(child(node, "time"), report);
   const timeUnit = resolveUnit(child(child(node, "time"), "unit"), dimensions.time, report);
   const valueUnit = resolveDetectorUnit(child(node, "value"), "unit", anyWord, report);
   const units = checkUnits(node, timeUnit, valueUnit, report);
-  if (content === undefined) report("file-missing", fileNode.at, { file });
   if (content === undefined || !time || !value || !valueUnit || format === "faulty" || !units) return undefined;
   const spec = {
     file: full,

@@ -1,6 +1,7 @@
 import type { Trial } from "../model/trial.js";
 import type { Value } from "../model/value.js";
 import type { Report } from "../problems/report.js";
+import type { Files } from "../read/files.js";
 import { beside } from "../read/paths.js";
 import { child, entriesOf, itemsOf, type MapNode, type Tree, textOf } from "../read/tree.js";
 import { type Dimension, dimensions } from "../units/dimension.js";
@@ -9,10 +10,8 @@ import { resolveInjection, signalNode } from "./injection.js";
 import { resolveReading } from "./reading.js";
 import { aboveZero } from "./sign.js";
 import { type TrialClock, trialClock } from "./trial-clock.js";
-import { type Files, knownUnit, type ResolvedTable, resolveTable } from "./trial-table.js";
+import { knownUnit, type ResolvedTable, resolveTable } from "./trial-table.js";
 import { emptyScope, resolveValue, type Scope } from "./value.js";
-
-export type { Files } from "./trial-table.js";
 
 /**
  * A trial document with its tables read, all on one clock, in SI.

@@ -3,6 +3,7 @@ import type { Stream } from "../model/network.js";
 import type { Value } from "../model/value.js";
 import type { Report } from "../problems/report.js";
 import type { Files } from "../read/files.js";
+import { openTable } from "../read/open.js";
 import { beside } from "../read/paths.js";
 import type { ColumnName } from "../read/table.js";
 import { child, type MapNode, type Tree, textOf } from "../read/tree.js";
@@ -39,7 +40,7 @@ export function resolveZones(
       const named = column(child(spec, role), child(spec, role) ?? node);
       return named && { ...named, unit: role === amount ? unit : undefined };
     });
-    const table = openTable(spec, asked, files, report);
+    const table = openColumns(spec, asked, files, report);
     return table && unit ? { table, unit } : undefined;
   };
   const volumes = open("volumes", ["id", "volume"], "volume", dimensions.volume);
@@ -64,7 +65,7 @@ export function resolveZones(
   return balanced && { ...balanced, at: { volumes: line("volumes"), flows: line("flows") } };
 }
 
-function openTable(
+function openColumns(
   spec: Tree | undefined,
   asked: readonly (ColumnName | undefined)[],
   files: Files,
@@ -74,8 +75,7 @@ function openTable(
   const file = textOf(spec, "file");
   if (!fileNode || file === undefined) return undefined;
   const path = beside(fileNode.at.source.path, file);
-  const content = files.read(path);
-  if (content === undefined) report("file-missing", fileNode.at, { file });
+  const content = openTable(path, { text: file, at: fileNode.at }, files, report);
   const columns = asked.filter((c) => c !== undefined);
   if (content === undefined || columns.length < asked.length) return undefined;
   return openWideCsv(path, content, columns, csvOptions(child(spec, "csv")), report);

@@ -37,7 +37,7 @@ export async function backmix(
   };
   const status = await run(args, {
     read,
-    exists: (path) => read(path) !== undefined,
+    obstacle: () => undefined,
     list: (path) => listed(path, files),
     write: (path, content) => void written.set(path, content),
     makeFolder: () => {},

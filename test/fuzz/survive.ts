@@ -37,7 +37,7 @@ export async function faultOf(
     const read = (file: string): Uint8Array | undefined => (file === path ? bytes : corpus.get(file));
     const io = {
       read,
-      exists: (file: string) => read(file) !== undefined,
+      obstacle: () => undefined,
       list: () => undefined,
       makeFolder: () => undefined,
       write: (file: string) => {

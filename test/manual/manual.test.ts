@@ -21,6 +21,11 @@ test("schemas/README.md is up to date: run `npm run build` and commit it", () =>
   expect(readFileSync(join(root, "schemas/README.md"), "utf8") === made).toBe(true);
 });
 
+test("it is a text, whatever a broken document holds", () => {
+  expect(made.match(/[^\P{Cc}\n]/gu)).toBe(null);
+  expect(made).toContain("PK\\x03\\x04");
+});
+
 test("every code has its place, with a document that shows it or its words", () => {
   const sections = new Map(made.split(/^#### /m).map((s) => [s.slice(0, s.indexOf("\n")), s]));
   for (const code of Object.keys(catalogue))

@@ -1,3 +1,4 @@
+import { type Obstacle, obstacleWords } from "../obstacle.js";
 import { entry } from "../problem.js";
 
 const meant = (nearest: string | undefined, otherwise: string): string =>
@@ -16,6 +17,11 @@ export const dataEntries = {
     severity: "error",
     says: ({ file }) => `there is no file '${file}'`,
     fix: "correct the name; it is relative to the document that names it",
+  }),
+  "file-unreadable": entry<{ file: string; why: Obstacle }>({
+    severity: "error",
+    says: ({ file, why }) => `'${file}' ${obstacleWords[why]}`,
+    fix: "name a file that may be read",
   }),
   "csv-empty": entry<{ file: string }>({
     severity: "error",

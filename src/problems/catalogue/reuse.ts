@@ -2,6 +2,8 @@ import { entry } from "../problem.js";
 
 const quoted = (names: readonly string[]): string => names.map((n) => `'${n}'`).join(", ");
 
+const counted = (n: number, word: string): string => `${n} ${word}${n === 1 ? "" : "s"}`;
+
 /** So many names can be listed in a fix. */
 const fewNames = 12;
 
@@ -58,7 +60,7 @@ export const reuseEntries = {
   "port-open": entry<{ part: string; side: "inlet" | "outlet"; known: readonly string[] }>({
     severity: "error",
     says: ({ part, side, known }) =>
-      `the part '${part}' has ${known.length === 0 ? `no ${side}` : `${known.length} ${side}s`}, so a bare name does not tell where the stream goes`,
+      `the part '${part}' has ${known.length === 0 ? `no ${side}` : counted(known.length, side)}, so a bare name does not tell where the stream goes`,
     fix: ({ part, side, known }) =>
       known.length === 0
         ? `declare ${side === "inlet" ? "a feed" : "an outlet"} in its file`
@@ -86,7 +88,7 @@ export const reuseEntries = {
   "repeat-ports": entry<{ part: string; inlets: number; outlets: number }>({
     severity: "error",
     says: ({ part, inlets, outlets }) =>
-      `'${part}' cannot be repeated in series: it has ${inlets} inlets and ${outlets} outlets, not one of each`,
+      `'${part}' cannot be repeated in series: it has ${counted(inlets, "inlet")} and ${counted(outlets, "outlet")}, not one of each`,
     fix: "take `repeat` out and place the part several times under names of their own",
   }),
   "unknown-binding": entry<{

@@ -5,10 +5,14 @@ import type { Problem } from "../problem.js";
 export const githubAnnotations = (problems: readonly Problem[]): string => problems.map(annotation).join("\n");
 
 function annotation(problem: Problem): string {
-  const { severity, file, line, column, endLine, endColumn, code, message, fix } = problemJson(problem);
+  const { severity, file, line, column, endLine, endColumn, code, message, fix, usedBy = [] } = problemJson(problem);
   const where = [`file=${property(file)}`, `line=${line}`, `endLine=${endLine}`];
   const columns = line === endLine ? [`col=${column}`, `endColumn=${endColumn}`] : [];
-  return `::${severity} ${[...where, ...columns, `title=${property(code)}`].join(",")}::${data(`${message}; fix: ${fix}`)}`;
+  const chain = usedBy.map(
+    (use) => `\n${use.as === "part" ? "used by" : "base of"} ${use.file}:${use.line}:${use.column}`,
+  );
+  const says = data(`${message}; fix: ${fix}${chain.join("")}`);
+  return `::${severity} ${[...where, ...columns, `title=${property(code)}`].join(",")}::${says}`;
 }
 
 const data = (text: string): string => text.replace(/%/g, "%25").replace(/\r/g, "%0D").replace(/\n/g, "%0A");

@@ -56,4 +56,12 @@ describe("annotations for GitHub", () => {
       expect(line).toMatch(/^::(error|warning) file=networks\/two%2C faults\.yaml,line=\d+,endLine=\d+,/);
     expect(lines.join("\n")).toContain("110 %25");
   });
+
+  test("the files that led to a problem stand under it", () => {
+    const use =
+      "network: A\nformat: 1\nfeeds: {f: {flow: 1 L/min, to: a}}\ncompartments: {a: {kind: part, use: tank.yaml, to: out}}\noutlets: [out]\n";
+    const tank = use.replace("kind: part, use: tank.yaml", "kind: stirred, volume: 1 Ll");
+    const line = githubAnnotations(parseAny(use, { path: "main.yaml", read: () => tank }).problems);
+    expect(line).toMatch(/^::error file=tank\.yaml,line=4,.*title=unknown-unit::.*%0Aused by main\.yaml:4:37$/);
+  });
 });
