@@ -57,9 +57,17 @@ export const tanks =
  * Outlet of a stirred tank of volume V that trades flow x with a quiet one of volume W, after a pulse of dose over V = 1
  * at t = 0: two exponentials, by the eigenvalues of the two balances.
  */
-export function twoZones(V: number, W: number, x: number, flow: number): (t: number) => number {
+export const twoZones = (V: number, W: number, x: number, flow: number): ((t: number) => number) =>
+  decays(V, W, x, flow, (weight) => weight);
+
+/** What is still to come out of it, 1 - F: the integral of its E from t on. */
+export const washoutOf = (V: number, W: number, x: number, flow: number): ((t: number) => number) =>
+  decays(V, W, x, flow, (weight, rate) => ((flow / V) * weight) / -rate);
+
+function decays(V: number, W: number, x: number, flow: number, height: (weight: number, rate: number) => number) {
   const [a, b, c, d] = [-(flow + x) / V, x / V, x / W, -x / W];
   const root = Math.sqrt(((a - d) / 2) ** 2 + b * c);
   const [slow, fast] = [(a + d) / 2 + root, (a + d) / 2 - root];
-  return (t) => ((slow - d) * Math.exp(slow * t) - (fast - d) * Math.exp(fast * t)) / (slow - fast);
+  const [heightSlow, heightFast] = [height((slow - d) / (slow - fast), slow), height((fast - d) / (fast - slow), fast)];
+  return (t: number): number => heightSlow * Math.exp(slow * t) + heightFast * Math.exp(fast * t);
 }
