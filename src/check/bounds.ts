@@ -7,7 +7,7 @@ export const parameterBounds: Rule = (network, report, { env, say }) => {
     const [low, high] = p.between.map((b) => b.of(env));
     const value = p.value.of(env);
     if (![low, high, value].every(Number.isFinite)) continue; // another rule says so
-    const text = (x: number) => say(x, p.value.dimension);
+    const text = (x: number) => say(x, p.value.dimension, p.value.unit);
     if (!(low < high)) report("bounds-reversed", p.between[0].at, { name: p.name, low: text(low), high: text(high) });
     else if (value < low || value > high) {
       report("start-outside-bounds", p.value.at, {
@@ -24,7 +24,7 @@ export const parameterBounds: Rule = (network, report, { env, say }) => {
 export const requirements: Rule = (network, report, { env, say }) => {
   for (const r of network.requires) {
     if (r.slack(env) > 0) continue;
-    const [left, right] = [r.left, r.right].map((side) => say(side.of(env), side.dimension));
+    const [left, right] = [r.left, r.right].map((side) => say(side.of(env), side.dimension, side.unit));
     report("requirement-broken", r.at, { text: r.text, left, right });
   }
 };

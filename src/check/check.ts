@@ -3,6 +3,7 @@ import type { Report } from "../problems/report.js";
 import { nearest } from "../text/nearest.js";
 import type { Dimension } from "../units/dimension.js";
 import { formatQuantity } from "../units/format.js";
+import type { Unit } from "../units/unit.js";
 import { parameterBounds, requirements, sharesBesideRest } from "./bounds.js";
 import { exchanges } from "./exchanges.js";
 import { finiteValues } from "./finite.js";
@@ -35,7 +36,7 @@ const rules: readonly Rule[] = [
 /** Runs every rule on a network whose names and values are all bound. */
 export function checkNetwork(network: Network, env: ArrayLike<number>, report: Report): void {
   const topology = topologyOf(network);
-  const say = (si: number, dimension: readonly number[]) =>
-    formatQuantity(si, network.units.unitFor(dimension as Dimension), 6);
+  const say = (si: number, dimension: readonly number[], own?: Unit) =>
+    formatQuantity(si, own?.name === "" ? own : network.units.unitFor(dimension as Dimension), 6);
   for (const rule of rules) rule(network, report, { topology, nearest, env, say });
 }

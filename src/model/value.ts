@@ -13,7 +13,7 @@ export interface Value {
   readonly dimension: Dimension;
   /** What a temperature is: a point on a scale, or a difference. */
   readonly scale?: Scale;
-  /** The unit first written in it, for printing; undefined where it is made of names alone. */
+  /** The unit first written in it, for printing; `one` for a pure number that none went into, undefined where it is made of names alone. */
   readonly unit: Unit | undefined;
   /** For derivatives, and to show how the value came about. */
   readonly expression: Expression;

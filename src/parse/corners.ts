@@ -2,9 +2,10 @@ import { problemFinder } from "../compile/compile.js";
 import { evaluateNames } from "../compile/evaluate.js";
 import type { Settings } from "../compile/plant.js";
 import type { Named, Network } from "../model/network.js";
+import type { Value } from "../model/value.js";
 import type { Report } from "../problems/report.js";
-import type { Dimension } from "../units/dimension.js";
 import { formatQuantity } from "../units/format.js";
+import type { Unit } from "../units/unit.js";
 
 /** Above this many parameters only the corners with one parameter moved are looked at. */
 const fewParameters = 8;
@@ -22,13 +23,12 @@ export function cornerWarnings(network: Network, report: Report): void {
     if (network.requires.some((r) => !(r.slack(values) > 0))) return undefined;
     return problemsAt(settings)[0]?.message;
   };
+  const shownIn = ({ unit, dimension }: Value): Unit => (unit?.name === "" ? unit : network.units.unitFor(dimension));
   for (const settings of cornersOf(moved, ends, moved.length > most)) {
     if (why(settings) === undefined) continue;
     const least = withoutIdle(settings, why);
     const corner = moved.flatMap((n) =>
-      n.name in least
-        ? `${n.name} = ${formatQuantity(least[n.name], network.units.unitFor(n.value.dimension as Dimension), 6)}`
-        : [],
+      n.name in least ? `${n.name} = ${formatQuantity(least[n.name], shownIn(n.value), 6)}` : [],
     );
     const first = moved.find((n) => n.name in least) ?? moved[0];
     const bound = first.between?.[least[first.name] === ends.get(first.name)?.[0] ? 0 : 1];

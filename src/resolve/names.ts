@@ -33,6 +33,7 @@ export function resolveNames(instances: readonly Instance[], report: Report): Re
   const scope = (prefix: string): Scope => ({
     slot: (name) => slots.get(prefix + name),
     dimension: (name) => found.get(prefix + name),
+    unit: (name) => values.get(slots.get(prefix + name) ?? -1)?.unit,
     scale: (name) => values.get(slots.get(prefix + name) ?? -1)?.scale,
     names: () => [...slots.keys()].filter((n) => n.startsWith(prefix)).map((n) => n.slice(prefix.length)),
     ...(prefix === "" ? {} : { whole: (name: string) => prefix + name }),

@@ -22,7 +22,9 @@ const usual: Unit[] = ["%", "L", "L/min", "g", "g/L", "mol/L", "mol", "min", "1/
 export function unitBook(values: readonly (Pick<Value, "unit"> | undefined)[], flow: Value | undefined): UnitBook {
   const book = new Map<string, Unit>();
   for (const v of values) {
-    if (v?.unit && !book.has(dimensionKey(v.unit.dimension))) book.set(dimensionKey(v.unit.dimension), v.unit);
+    // A bare number tells nothing of how shares are to be written.
+    if (v?.unit && v.unit.name !== "" && !book.has(dimensionKey(v.unit.dimension)))
+      book.set(dimensionKey(v.unit.dimension), v.unit);
   }
   const flowUnit = flow?.unit ?? book.get(dimensionKey(dimensions.flow));
   const time = timeOf(flowUnit) ?? book.get(dimensionKey(dimensions.time)) ?? known("min");

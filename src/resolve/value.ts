@@ -12,7 +12,7 @@ import type { Span } from "../text/source.js";
 import { nameDimension } from "../units/describe.js";
 import { type Dimension, dimensions, isRatio, sameDimension } from "../units/dimension.js";
 import { symbols } from "../units/table.js";
-import type { Unit } from "../units/unit.js";
+import { one, type Unit } from "../units/unit.js";
 import { spanWithin } from "./span.js";
 import { describeWanted, exampleOf, fits, type Wanted } from "./wanted.js";
 
@@ -25,6 +25,8 @@ export interface Scope {
   names(): readonly string[];
   /** Whether a temperature is a point on a scale or a difference; either where nobody can tell. */
   readonly scale?: (name: string) => Scale | undefined;
+  /** The unit that a name's value is written in. */
+  readonly unit?: (name: string) => Unit | undefined;
   /** What a name is called from outside, where the document is a part of another: `core.tanks` for its own `tanks`. */
   readonly whole?: (name: string) => string;
 }
@@ -92,7 +94,7 @@ export function bindValue(
   return {
     at: node.at,
     dimension,
-    unit: unitFor(expression, dimension, scale),
+    unit: unitFor(expression, dimension, scale) ?? bareUnit(expression, dimension, scope),
     scale,
     expression: whole,
     uses: namesIn(whole),
@@ -186,6 +188,12 @@ function unitFor(e: Expression, dimension: Dimension, scale: Scale): Unit | unde
     if (part.unit.offset === 0 || scale === "point") unit ??= part.unit;
   });
   return unit;
+}
+
+/** The unit of a pure number that no % or other unit went into: a Péclet number of 5 is no 500 %. */
+function bareUnit(e: Expression, dimension: Dimension, scope: Scope): Unit | undefined {
+  const bare = isRatio(dimension) && namesIn(e).every((name) => scope.unit?.(name)?.name === "");
+  return bare ? one : undefined;
 }
 
 function spreadFault({ kind, unit, at }: Uncertainty, dimension: Dimension): Fault | undefined {

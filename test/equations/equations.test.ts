@@ -216,3 +216,24 @@ test.each([
   expect(isFault(e)).toBe(false);
   if (!isFault(e)) expect(texExpression(e)).toBe(tex);
 });
+
+test("a number written bare is printed bare beside shares in %, and so is what is made of it", () => {
+  const text = `network: A
+format: 1
+constants: {peclet: 5, twice: 2 * peclet, share: 20 %, rest-of-it: 1 - share}
+feeds: {f: {flow: 1 L/min, to: {tube: rest, out: rest-of-it / 2}}}
+compartments: {tube: {kind: dispersed, volume: 100 L, peclet: twice, ends: closed, to: out}}
+outlets: [out]
+`;
+  const page = equationsMarkdown(plantOf(text));
+  const shown = (symbol: string) =>
+    page
+      .split("\n")
+      .find((l) => l.startsWith(`| $${symbol}`))
+      ?.split(" | ")[1];
+  expect(shown("\\text{peclet}$")).toBe("5");
+  expect(shown("\\text{twice}$")).toBe("10");
+  expect(shown("\\text{share}$")).toBe("20 %");
+  expect(shown("\\text{rest-of-it}$")).toBe("80 %");
+  expect(shown("\\text{peclet}_{")).toBe("10");
+});

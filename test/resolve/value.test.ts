@@ -3,6 +3,7 @@ import { collector } from "../../src/problems/report.js";
 import type { ScalarNode } from "../../src/read/tree.js";
 import { resolveExpression, resolveUnit, resolveValue, type Scope, type Wanted } from "../../src/resolve/value.js";
 import { dimensions } from "../../src/units/dimension.js";
+import { one } from "../../src/units/unit.js";
 
 const names = ["total", "tank", "speed", "feed.flow", "failed"];
 const known = [dimensions.volume, dimensions.volume, dimensions.frequency, dimensions.flow, undefined];
@@ -48,6 +49,9 @@ test("the unit for printing has the dimension of the whole", () => {
   expect(resolve(scalar("0.5 min * feed.flow")).value?.unit).toBeUndefined();
   expect(resolve(scalar("35 degC - 20 degC"), "any").value?.unit).toBeUndefined();
   expect(resolve(scalar("35 degC + 2 K"), "any").value?.unit?.name).toBe("degC");
+  expect(resolve(scalar("10 / 2"), "any").value?.unit).toBe(one);
+  expect(resolve(scalar("1 - 10 %"), "any").value?.unit?.name).toBe("%");
+  expect(resolve(scalar("total / tank"), "any").value?.unit).toBeUndefined();
 });
 
 test("a share or a flow: the dimension tells which", () => {
