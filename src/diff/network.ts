@@ -1,7 +1,6 @@
 import { evaluateNames } from "../compile/evaluate.js";
-import type { Check, Compartment, Feed, Named, Network, Requirement, Stream } from "../model/network.js";
+import type { Check, Compartment, Feed, Named, Network, Requirement } from "../model/network.js";
 import type { Value } from "../model/value.js";
-import type { Span } from "../text/source.js";
 import {
   type Change,
   change,
@@ -15,6 +14,8 @@ import {
 import type { Difference } from "./difference.js";
 import { exchangesOf, streamKeys, type Translate, valueKey, wordsOf } from "./keys.js";
 import { type Matching, matchNames, type Side } from "./match.js";
+import { collapseParts } from "./parts.js";
+import { type Streams, streamWords, type Told, valueWords } from "./words.js";
 
 /** What two networks differ in, in the order of a file, and which of their names are the same. */
 export interface NetworkDiff {
@@ -48,31 +49,29 @@ export function diffNetworks(before: Network, after: Network): NetworkDiff {
             ...change("title", before.title, after.title, before.at, after.at),
           },
         ];
-  return {
-    matching,
-    differences: [
-      ...title,
-      ...compareNamed(ownNames(before), ownNames(after), values, {
-        of: (n) => n.role,
-        say: sayNamed,
-        changes: (x, y) => namedChanges(x, y, a, b),
-      }),
-      ...compareStatements("requirement", requirements(a), requirements(b)),
-      ...compareNamed(before.feeds, after.feeds, places, {
-        of: () => "feed",
-        say: (f) => `${written(f.flow.at)} to ${written(f.toAt)}`,
-        changes: (x, y) => [...valueChange("flow", x.flow, y.flow, a, b), ...streamChange(x, y, a, b)],
-      }),
-      ...compareNamed(before.compartments, after.compartments, places, {
-        of: () => "compartment",
-        say: sayBody,
-        changes: (x, y) => [...bodyChanges(x, y, a, b), ...streamChange(x, y, a, b)],
-      }),
-      ...exchanges(a, b),
-      ...compareNamed(before.outlets, after.outlets, places, { of: () => "outlet", say: () => "", changes: () => [] }),
-      ...compareStatements("check", checks(a), checks(b)),
-    ],
-  };
+  const differences = [
+    ...title,
+    ...compareNamed(ownNames(before), ownNames(after), values, {
+      of: (n) => n.role,
+      say: sayNamed,
+      changes: (x, y) => namedChanges(x, y, a, b),
+    }),
+    ...compareStatements("requirement", requirements(a), requirements(b)),
+    ...compareNamed(before.feeds, after.feeds, places, {
+      of: () => "feed",
+      say: (f) => `${written(f.flow.at)} to ${written(f.toAt)}`,
+      changes: (x, y) => [...valueChange("flow", x.flow, y.flow, a, b), ...streamChange(x, y, a, b)],
+    }),
+    ...compareNamed(before.compartments, after.compartments, places, {
+      of: () => "compartment",
+      say: sayBody,
+      changes: (x, y) => [...bodyChanges(x, y, a, b), ...streamChange(x, y, a, b)],
+    }),
+    ...exchanges(a, b),
+    ...compareNamed(before.outlets, after.outlets, places, { of: () => "outlet", say: () => "", changes: () => [] }),
+    ...compareStatements("check", checks(a), checks(b)),
+  ];
+  return { matching, differences: collapseParts(differences, before, after) };
 }
 
 const ownNames = ({ names }: Network): Named[] => names.filter((n) => n.role !== "feed-flow");
@@ -94,7 +93,11 @@ function namedChanges(x: Named, y: Named, a: Read, b: Read): Change[] {
 }
 
 const valueChange = (key: string, x: Value, y: Value, a: Read, b: Read): Change[] =>
-  valueKey(x, a.env, a.t) === valueKey(y, b.env, b.t) ? [] : [change(key, written(x.at), written(y.at), x.at, y.at)];
+  valueKey(x, a.env, a.t) === valueKey(y, b.env, b.t)
+    ? []
+    : [change(key, ...valueWords(told(x, a), told(y, b)), x.at, y.at)];
+
+const told = <T>(what: T, { network, env }: Read): Told<T> => ({ what, network, env });
 
 function sayBody({ kind, values, streams, toAt }: Compartment): string {
   const keys = Object.entries(values).map(([key, v]) => `${key} ${written(v.at)}`);
@@ -117,16 +120,11 @@ function bodyChanges(x: Compartment, y: Compartment, a: Read, b: Read): Change[]
 
 const keysOf = (x: object, y: object): string[] => [...new Set([...Object.keys(x), ...Object.keys(y)])];
 
-interface Splits {
-  readonly streams: readonly Stream[];
-  readonly toAt: Span;
-}
-
-function streamChange(x: Splits | Feed, y: Splits | Feed, a: Read, b: Read): Change[] {
-  const key = ({ streams }: Splits, { env, t }: Read): string =>
+function streamChange(x: Streams | Feed, y: Streams | Feed, a: Read, b: Read): Change[] {
+  const key = ({ streams }: Streams, { env, t }: Read): string =>
     JSON.stringify([...streamKeys(streams, env, t)].sort());
-  const say = ({ streams, toAt }: Splits): string => (streams.length > 0 ? written(toAt) : "none");
-  return key(x, a) === key(y, b) ? [] : [change("to", say(x), say(y), x.toAt, y.toAt)];
+  if (key(x, a) === key(y, b)) return [];
+  return [change("to", ...streamWords(told(x, a), told(y, b)), x.toAt, y.toAt)];
 }
 
 function exchanges(a: Read, b: Read): Difference[] {

@@ -6,6 +6,7 @@ import type { Plant } from "../../src/compile/plant.js";
 import type { Difference } from "../../src/diff/difference.js";
 import { figuresOf } from "../../src/diff/figures.js";
 import { diffNetworks, type NetworkDiff } from "../../src/diff/network.js";
+import { valueWords } from "../../src/diff/words.js";
 import { type NetworkDocument, parseNetwork } from "../../src/parse/network.js";
 import { scribble, seeded } from "../tidy/scribble.js";
 import { shipped } from "../tidy/shipped.js";
@@ -225,4 +226,57 @@ test("flows and space times before and after, each in the unit of its file", () 
   expect(time?.after?.unit.name).toBe("h");
   expect((time?.before?.value ?? 0) / (time?.after?.value ?? 1)).toBeCloseTo(2, 12);
   expect(figures.filter((f) => f.of === "volume").every((f) => f.same)).toBe(true);
+});
+
+describe("parts", () => {
+  const core = `network: Core
+format: 1
+constants: {v: 8 L}
+feeds: {x: {flow: 1 L/min, to: tank}}
+compartments: {tank: {kind: stirred, volume: v, to: y}}
+outlets: [y]
+`;
+  const read = () => core;
+  const parsed = (lines: string): NetworkDocument => {
+    const text = `network: Row\nformat: 1\nfeeds: {f: {flow: 6 L/min, to: a}}\ncompartments:\n${lines}\noutlets: [out]\n`;
+    const { document, problems } = parseNetwork(text, { path: "row.yaml", read });
+    expect(problems.filter((p) => p.severity === "error")).toEqual([]);
+    return document as NetworkDocument;
+  };
+  const tank = (to: string) => `  a: {kind: stirred, volume: 20 L, to: ${to}}`;
+  const plain = parsed(tank("out"));
+  const withPart = parsed(`${tank("n")}\n  n: {kind: part, use: core.yaml, to: out}`);
+  const recycled = parsed(`${tank("n")}\n  n: {kind: part, use: core.yaml, to: {y: {a: 30 %, out: rest}}}`);
+
+  test("one that is new or gone is one line", () => {
+    const after = "Core, core.yaml, 3 bodies with its ports";
+    expect(said(diffNetworks(plain, withPart)).filter((d) => d.what === "added")).toEqual([
+      { what: "added", of: "part", name: "n", after },
+    ]);
+    expect(said(diffNetworks(withPart, plain)).filter((d) => d.what === "removed")).toEqual([
+      { what: "removed", of: "part", name: "n", before: after },
+    ]);
+  });
+
+  test("a recycle that is gone is told by the places it led to", () => {
+    expect(said(diffNetworks(recycled, withPart))).toEqual([
+      { what: "changed", of: "compartment", name: "n.y", key: "to", before: "{a: 30 %, out: rest}", after: "out" },
+    ]);
+  });
+
+  test("no change looks like none", () => {
+    const other = parsed(`${tank("m")}\n  m: {kind: part, use: core.yaml, with: {v: 9 L}, to: out}`);
+    for (const { what, before, after } of diffNetworks(withPart, other).differences) {
+      if (what === "changed") expect(before).not.toBe(after);
+    }
+  });
+
+  test("a value written the same is told by what it comes to", () => {
+    const value = (text: string) =>
+      parsed(`  a: {kind: stirred, volume: ${text}, to: out}`).compartments[0].values.volume;
+    const [v, w] = [value("20 L"), value("30 L")];
+    const at = v.at;
+    const of = (what: typeof v) => ({ what: { ...what, at }, network: plain, env: [] });
+    expect(valueWords(of(v), of(w))).toEqual(["20 L = 20 L", "20 L = 30 L"]);
+  });
 });

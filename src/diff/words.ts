@@ -1,0 +1,48 @@
+import type { Network, Stream } from "../model/network.js";
+import type { Value } from "../model/value.js";
+import type { Span } from "../text/source.js";
+import { formatQuantity } from "../units/format.js";
+import { written } from "./compare.js";
+
+/** A value of one of two documents, with what it needs to be told. */
+export interface Told<T> {
+  readonly what: T;
+  readonly network: Network;
+  readonly env: ArrayLike<number>;
+}
+
+/** Two values as written; where that is the same, what they come to, or what their names stand for. */
+export function valueWords(a: Told<Value>, b: Told<Value>): [string, string] {
+  return firstUnlike(a, b, [
+    ({ what }) => written(what.at),
+    ({ what, network, env }) => {
+      const unit = what.unit ?? network.units.unitFor(what.dimension);
+      return `${written(what.at)} = ${formatQuantity(what.of(env), unit, 6)}`;
+    },
+    ({ what }) => `${written(what.at)} by ${what.uses.join(", ")}`,
+  ]);
+}
+
+/** Where streams go, as written; where that is the same, by the whole names of the places. */
+export function streamWords(a: Told<Streams>, b: Told<Streams>): [string, string] {
+  return firstUnlike(a, b, [
+    ({ what: { streams, toAt } }) => (streams.length > 0 ? written(toAt) : "none"),
+    ({ what: { streams } }) => (streams.length > 0 ? places(streams) : "none"),
+  ]);
+}
+
+export interface Streams {
+  readonly streams: readonly Stream[];
+  readonly toAt: Span;
+}
+
+function places(streams: readonly Stream[]): string {
+  if (streams.length === 1 && streams[0].split.is === "all") return streams[0].to;
+  const share = ({ split }: Stream): string => ("value" in split ? written(split.value.at) : split.is);
+  return `{${streams.map((s) => `${s.to}: ${share(s)}`).join(", ")}}`;
+}
+
+function firstUnlike<T>(a: Told<T>, b: Told<T>, ways: readonly ((told: Told<T>) => string)[]): [string, string] {
+  const said = ways.map((say): [string, string] => [say(a), say(b)]);
+  return said.find(([x, y]) => x !== y) ?? said[0];
+}
