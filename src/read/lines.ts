@@ -16,3 +16,9 @@ export function correctedLine(span: Span, by: string): string {
   const text = lineText(span.source, line);
   return `${text.slice(0, column - 1)}${by}${line === endLine ? text.slice(endColumn - 1) : ""}`.trim();
 }
+
+/** What a ` #` within a plain value cut off with no space after it, `#1` of `Cond #1`: a comment to YAML, hardly to its author. */
+export function cutOff({ source, from, to }: Span): string | undefined {
+  if (/^["']/.test(source.text.slice(from, to))) return undefined;
+  return /^[ \t]+#[^\s#].*/.exec(restOfLine(source.text, to))?.[0].trimEnd();
+}

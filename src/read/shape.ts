@@ -114,18 +114,22 @@ function findingOf(fault: Fault, tree: MapNode, kind: DocumentKind, shape: Shape
     case "maxItems": {
       const at = firstLine(here.node);
       const items = here.node.type === "list" ? here.node.items : [];
-      const data = {
-        key: here.name,
-        found: items.length,
-        wanted: Number(fault.params.limit),
-        comma:
-          items.length > Number(fault.params.limit) && items.some((i) => i.type === "scalar" && /^\d+$/.test(i.text)),
-      };
+      const limit = Number(fault.params.limit);
+      const data = { key: here.name, found: items.length, wanted: limit, comma: withPoints(here.node, limit) };
       return finding(at, () => report("wrong-length", at, data));
     }
     default:
       return wrongShape(here, report, finding);
   }
+}
+
+/** `[0,5 L, 2,5 L]` as `[0.5 L, 2.5 L]`: a comma with a digit on either side and no space was a decimal one. */
+function withPoints(node: Tree, wanted: number): string | undefined {
+  if (node.type !== "list" || node.items.length <= wanted) return undefined;
+  const written = node.at.source.text.slice(node.at.from, node.at.to);
+  const corrected = written.replace(/(?<![\d.])(\d+),(?=\d)/g, "$1.");
+  const decimals = corrected.split(",").length;
+  return corrected !== written && decimals === wanted ? corrected : undefined;
 }
 
 type MakeFinding = (at: Span, tell: () => void, own?: string) => Finding;

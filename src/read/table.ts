@@ -6,6 +6,7 @@ import { isUnitFault, parseUnit } from "../units/parse.js";
 import type { Unit } from "../units/unit.js";
 import { guessClock } from "./clock.js";
 import { type CsvOptions, type CsvRow, type CsvTable, cellSpan, lineSpan } from "./csv.js";
+import { correctedLine, cutOff, quote, restOfLine } from "./lines.js";
 
 /** A column as a document names it: by its header, or by its position from 1. */
 export interface ColumnName {
@@ -117,18 +118,35 @@ function headerIndex(
   return words ? 0 : -1;
 }
 
+/** `column: Cond #1` as it should have been written, where a column has the whole name or the name looks cut. */
+function uncut(column: string, at: Span, headers: readonly string[]): string | undefined {
+  const cut = cutOff(at);
+  const rest = restOfLine(at.source.text, at.to);
+  const own = headers.find(
+    (h) => h.startsWith(`${column} `) && h.includes("#") && rest.startsWith(h.slice(column.length)),
+  );
+  const whole = own ?? (cut && column + cut);
+  const line = { ...at, to: at.to + rest.length };
+  return whole && correctedLine(line, quote(whole));
+}
+
 /** 0-based position of a column, -1 where it is not there; reported. */
 function position(table: CsvTable, header: number, { column, at }: ColumnName, report: Report): number {
   const cells = table.rows[Math.max(0, header)].cells;
   if (typeof column === "number") {
     if (column >= 1 && column <= cells.length) return column - 1;
-    report("column-missing", at, { column: String(column), headers: cells, nearest: undefined });
+    report("column-missing", at, { column: String(column), headers: cells, nearest: undefined, corrected: undefined });
     return -1;
   }
   const found = cells.flatMap((cell, i) => (cell === column ? [i] : []));
   if (found.length === 1) return found[0];
   if (found.length === 0) {
-    report("column-missing", at, { column, headers: cells, nearest: nearest(column, cells) });
+    report("column-missing", at, {
+      column,
+      headers: cells,
+      nearest: nearest(column, cells),
+      corrected: uncut(column, at, cells),
+    });
   } else {
     report("column-twice", at, { column, positions: found.map((i) => i + 1) });
   }

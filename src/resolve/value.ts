@@ -6,6 +6,7 @@ import { parseExpression, parseValue, parseWrittenUnit } from "../expressions/pa
 import { type Scale, scaleOf } from "../expressions/scale.js";
 import type { Env, Value } from "../model/value.js";
 import type { Report } from "../problems/report.js";
+import { cutOff } from "../read/lines.js";
 import type { ScalarNode, Tree } from "../read/tree.js";
 import { nearest } from "../text/nearest.js";
 import type { Span } from "../text/source.js";
@@ -167,7 +168,9 @@ function wrongDimension(node: ScalarNode, e: Expression, got: Dimension, wanted:
   const literal = e.type === "negate" ? e.of : e;
   if (literal.type === "number" && literal.unit.name === "") {
     const fixed = exampleOf(wanted).replace(/^\S+/, node.text.slice(0, e.at.to));
-    report("missing-unit", at, { text: node.text, wanted: describeWanted(wanted), fixed, zero: literal.value === 0 });
+    const cut = cutOff(node.at)?.trim();
+    const zero = literal.value === 0;
+    report("missing-unit", at, { text: node.text, wanted: describeWanted(wanted), fixed, zero, cut });
   } else {
     const example = exampleOf(wanted);
     report("wrong-dimension", at, {

@@ -43,12 +43,20 @@ export const dataEntries = {
     says: ({ line, last }) => `no header can be on line ${line}: the last row of the file is on line ${last}`,
     fix: "give `csv: {header: …}` the line of the file that holds the headers, counted from 1",
   }),
-  "column-missing": entry<{ column: string; headers: readonly string[]; nearest: string | undefined }>({
+  "column-missing": entry<{
+    column: string;
+    headers: readonly string[];
+    nearest: string | undefined;
+    /** The line as it should be, where ` #` cut the name. */
+    corrected: string | undefined;
+  }>({
     severity: "error",
     says: ({ column, headers }) =>
       `the table has no column '${column}'; it has ${headers.map((h) => `'${h}'`).join(", ")}`,
-    fix: ({ nearest }) =>
-      meant(nearest, "name one of these, give its position from 1, or the line of the header in `csv:`"),
+    fix: ({ nearest, corrected }) =>
+      corrected
+        ? `\` #\` begins a comment: put the name in quotes, \`${corrected}\``
+        : meant(nearest, "name one of these, give its position from 1, or the line of the header in `csv:`"),
   }),
   "column-twice": entry<{ column: string; positions: readonly number[] }>({
     severity: "error",

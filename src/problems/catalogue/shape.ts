@@ -85,12 +85,12 @@ export const shapeEntries = {
       `'${d.key}' is '${d.found}', not a whole number from ${d.atLeast}${d.atMost === undefined ? "" : ` to ${d.atMost}`}`,
     fix: (d) => `write a whole number such as \`${d.key}: ${Math.max(d.atLeast, 1)}\`, with no unit and no decimals`,
   }),
-  "wrong-length": entry<{ key: string; found: number; wanted: number; comma: boolean }>({
+  "wrong-length": entry<{ key: string; found: number; wanted: number; comma: string | undefined }>({
     severity: "error",
     says: (d) => `'${d.key}' has ${d.found} ${d.found === 1 ? "value" : "values"}, not ${d.wanted}`,
     fix: (d) =>
-      d.comma
-        ? "a comma parts values; decimals are written with a point: `2.5`, not `2,5`"
+      d.comma !== undefined
+        ? `a comma parts values; decimals are written with a point: \`${d.comma}\``
         : `write ${d.wanted} values in brackets, parted by commas`,
   }),
 } as const;

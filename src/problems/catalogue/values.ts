@@ -64,10 +64,11 @@ export const valueEntries = {
     fix: "divide it by a value of the same kind first",
   }),
 
-  "missing-unit": entry<{ text: string; wanted: string; fixed: string; zero: boolean }>({
+  "missing-unit": entry<{ text: string; wanted: string; fixed: string; zero: boolean; cut?: string | undefined }>({
     severity: "error",
     says: (d) => `\`${d.text}\` has no unit; ${d.wanted} is wanted`,
-    fix: (d) => `${d.zero ? "a zero needs its unit too" : "write the unit after the number"}: \`${d.fixed}\``,
+    fix: (d) =>
+      `${d.zero ? "a zero needs its unit too" : "write the unit after the number"}: \`${d.fixed}\`${d.cut ? `; \` #\` begins a comment, so \`${d.cut}\` is not read` : ""}`,
   }),
   "wrong-dimension": entry<{ text: string; got: string; wanted: string; example: string }>({
     severity: "error",
