@@ -15,7 +15,7 @@ import type { Difference } from "./difference.js";
 import { exchangesOf, streamKeys, type Translate, valueKey, wordsOf } from "./keys.js";
 import { type Matching, matchNames, type Side } from "./match.js";
 import { collapseParts } from "./parts.js";
-import { type Streams, streamWords, type Told, valueWords } from "./words.js";
+import { places, type Streams, streamWords, type Told, valueWords } from "./words.js";
 
 /** What two networks differ in, in the order of a file, and which of their names are the same. */
 export interface NetworkDiff {
@@ -99,9 +99,11 @@ const valueChange = (key: string, x: Value, y: Value, a: Read, b: Read): Change[
 
 const told = <T>(what: T, { network, env }: Read): Told<T> => ({ what, network, env });
 
-function sayBody({ kind, values, streams, toAt }: Compartment): string {
+function sayBody({ name, kind, values, streams, toAt }: Compartment): string {
   const keys = Object.entries(values).map(([key, v]) => `${key} ${written(v.at)}`);
-  return [kind.name, ...keys, ...(streams.length > 0 ? [`to ${written(toAt)}`] : [])].join(", ");
+  // What a part's outlet leads to stands in another file than the outlet.
+  const to = name.includes(".") ? places(streams) : written(toAt);
+  return [kind.name, ...keys, ...(streams.length > 0 ? [`to ${to}`] : [])].join(", ");
 }
 
 function bodyChanges(x: Compartment, y: Compartment, a: Read, b: Read): Change[] {

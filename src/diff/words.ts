@@ -36,7 +36,8 @@ export interface Streams {
   readonly toAt: Span;
 }
 
-function places(streams: readonly Stream[]): string {
+/** By the whole names of the places: `out`, `{core.feed: 30 %, out: rest}`. */
+export function places(streams: readonly Stream[]): string {
   if (streams.length === 1 && streams[0].split.is === "all") return streams[0].to;
   const share = ({ split }: Stream): string => ("value" in split ? written(split.value.at) : split.is);
   return `{${streams.map((s) => `${s.to}: ${share(s)}`).join(", ")}}`;

@@ -266,9 +266,19 @@ outlets: [y]
 
   test("no change looks like none", () => {
     const other = parsed(`${tank("m")}\n  m: {kind: part, use: core.yaml, with: {v: 9 L}, to: out}`);
-    for (const { what, before, after } of diffNetworks(withPart, other).differences) {
-      if (what === "changed") expect(before).not.toBe(after);
-    }
+    const changed = said(diffNetworks(withPart, other)).filter((d) => d.what === "changed");
+    expect(changed.map(({ key, before, after }) => [key, before, after])).toEqual([["volume", "v = 8 L", "v = 9 L"]]);
+  });
+
+  test("a port that is new or gone says where it leads", () => {
+    const repeated = parsed(`${tank("n")}\n  n: {kind: part, use: core.yaml, repeat: 2, to: out}`);
+    const told = said(diffNetworks(withPart, repeated)).map(({ what, name, before, after }) => [
+      what,
+      name,
+      before ?? after,
+    ]);
+    expect(told).toContainEqual(["added", "n.1.y", "junction, to n.2.x"]);
+    expect(told).toContainEqual(["removed", "n.y", "junction, to out"]);
   });
 
   test("a value written the same is told by what it comes to", () => {
