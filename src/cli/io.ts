@@ -121,6 +121,7 @@ function whyNot(e: unknown): string {
     EACCES: "it is not allowed",
     EROFS: "it is read-only",
     EISDIR: "it is a folder",
+    ELOOP: "a link in the path leads back to itself",
     ENOSPC: "the disk is full",
   };
   return words[code] ?? code;

@@ -3,6 +3,7 @@ import { chmodSync, closeSync, mkdirSync, mkdtempSync, openSync, rmSync, symlink
 import { tmpdir } from "node:os";
 import { join } from "node:path";
 import { afterAll, beforeAll, describe, expect, test } from "vitest";
+import { Inputs } from "../../src/cli/inputs.js";
 import { files, type Io } from "../../src/cli/io.js";
 import { obstacleAt, readRegular, readStream, streamNumber } from "../../src/cli/read-file.js";
 import { run } from "../../src/cli/run.js";
@@ -121,6 +122,15 @@ describe("reading", () => {
     expect(readStream(file, 200_000)?.length).toBe(100_000);
     closeSync(file);
     expect(readStream(9999, 10)).toBe(undefined);
+  });
+
+  test("of a stream without an end, no further than a document may be long", async () => {
+    const endless = {
+      read: (_: string, most = Number.NaN) => new Uint8Array(most + 1).fill(35),
+      obstacle: () => undefined,
+    };
+    const told = new Inputs(endless).text("-");
+    expect(typeof told === "string" ? told : told.message).toBe("the file has 10 MB or more; a document may have 2 MB");
   });
 
   test.skipIf(!unix)("not of a device that was opened for something else", () => {

@@ -17,9 +17,9 @@ export const yamlEntries = {
     says: (d) => `the file holds ${d.found}, not keys with values`,
     fix: "begin with what it is: `network: TITLE`, then `format: 1`",
   }),
-  "file-too-large": entry<{ megabytes: number }>({
+  "file-too-large": entry<{ megabytes: number; orMore?: boolean }>({
     severity: "error",
-    says: (d) => `the file has ${d.megabytes} MB; a document may have 2 MB`,
+    says: (d) => `the file has ${d.megabytes} MB${d.orMore ? " or more" : ""}; a document may have 2 MB`,
     fix: "keep tables in CSV files and name them here",
     example: { megabytes: 11 },
   }),
