@@ -278,7 +278,7 @@ outlets: [y]
       before ?? after,
     ]);
     expect(told).toContainEqual(["added", "n.1.y", "junction, to n.2.x"]);
-    expect(told).toContainEqual(["removed", "n.y", "junction, to out"]);
+    expect(told).toContainEqual(["removed", "n.tank", "stirred, volume v, to n.y"]);
   });
 
   test("a value written the same is told by what it comes to", () => {
