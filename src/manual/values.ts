@@ -41,7 +41,7 @@ export function valuesSection(): string {
       "Names are letters, digits, hyphens and underscores, and begin with a letter. A hyphen inside a word belongs to the name.",
     "### Units",
     "Units are joined by `/` and `·` or `*`, with exponents (`m3`, `m^2`, `s^-1`): `mol/L/min`, `kg/h`, `1/min`. Division takes one factor at a time, from the left. " +
-      "Prefixes stand before a unit without a space: `mL`, `kJ`, `ug` (or `µg`). A unit that is not in the table is refused, with the one that was probably meant.",
+      "Prefixes stand before a unit without a space: `mL`, `kJ`, `ug` (or `µg`). `gal`, `qt`, `pt` and `floz` are US liquid measures, `impgal` and `galUK` the imperial gallon. A temperature in `degC` or `degF` is a point on a scale: to it one adds a difference, in `K`. A unit that is not in the table is refused, with the one that was probably meant.",
     unitTable(),
     `Other spellings are asked back, never taken silently: ${spellings()}.`,
     "### Dimensions",
