@@ -141,12 +141,12 @@ const checks: KeyShape = {
         },
         volume: {
           shape: name,
-          says: "The volume of this compartment; `all` for the whole vessel, dead volume included.",
+          says: "The volume of this compartment, part or member of a `repeat` (`chain.2`); `all` for the whole vessel, dead volume included.",
           example: "all",
         },
         flow: {
           shape: name,
-          says: "The flow through this compartment, feed or outlet, exchange left out.",
+          says: "The flow through this compartment, part, member of a `repeat` (`chain.2`), feed or outlet; exchange and backflow left out.",
           example: "bulk",
         },
         equals: {
