@@ -11,8 +11,12 @@ const read = (path: string) => {
   }
 };
 
-test.each(Object.keys(dataEntries))("%s: the broken example has this fault and no other", (code) => {
-  const path = `test/broken/${code}.yaml`;
-  const { problems } = parseTrial(readFileSync(path, "utf8"), { path, read });
-  expect([...new Set(problems.map((p) => p.code))]).toEqual([code]);
-});
+// `file-unreadable` needs a file system with something that is no file: test/broken.test.ts has it.
+test.each(Object.keys(dataEntries).filter((code) => code !== "file-unreadable"))(
+  "%s: the broken example has this fault and no other",
+  (code) => {
+    const path = `test/broken/${code}.yaml`;
+    const { problems } = parseTrial(readFileSync(path, "utf8"), { path, read });
+    expect([...new Set(problems.map((p) => p.code))]).toEqual([code]);
+  },
+);

@@ -21,7 +21,10 @@ test("numbers are read to the very double that JavaScript reads", () => {
     { numRuns: 2000 },
   );
   fc.assert(
-    fc.property(fc.double({ noNaN: true, noDefaultInfinity: true }), (x) => void expect(read(String(x))).toBe(Number(String(x)))),
+    fc.property(
+      fc.double({ noNaN: true, noDefaultInfinity: true }),
+      (x) => void expect(read(String(x))).toBe(Number(String(x))),
+    ),
   );
 });
 

@@ -68,8 +68,7 @@ function bestChange(result: StudyResult): string[] {
   const now = estimateLine(estimate(f.before, undefined, unit));
   const then = estimateLine(estimate(f.value, f.interval95, unit));
   const by = estimateLine(differenceEstimate(f.value - f.before, f.difference95, unit));
-  const sure =
-    f.probabilityBetter === undefined ? "" : `; chance of being better ${chance(f.probabilityBetter)}`;
+  const sure = f.probabilityBetter === undefined ? "" : `; chance of being better ${chance(f.probabilityBetter)}`;
   return [`${c.change.title}: ${f.name} from ${now} to ${then}, by ${by}${sure}.`];
 }
 
