@@ -27,6 +27,15 @@ describe("the README tells the truth", () => {
     expect(targets.filter((t) => !existsSync(t))).toEqual([]);
   });
 
+  test("its pictures are what the program draws today", async () => {
+    const picture = (name: string) => readFileSync(`networks/tour/${name}.svg`, "utf8").trimEnd();
+    const { out } = await backmix(["draw", "networks/tour/corner.yaml"]);
+    expect(out.trimEnd()).toBe(picture("corner"));
+    const { written } = await backmix(["study", "networks/tour/study.yaml"]);
+    const rivals = [...written].find(([path]) => path.endsWith("figures/rivals-1.svg"))?.[1];
+    expect(rivals?.trimEnd()).toBe(picture("rivals"));
+  });
+
   test("the set-up is two commands that package.json has", () => {
     const setup = blocks.find((b) => b.language === "sh")?.body ?? "";
     const { scripts } = JSON.parse(readFileSync("package.json", "utf8"));

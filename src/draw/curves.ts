@@ -71,9 +71,6 @@ export function drawCurves(curves: Curves, options: CurvesOptions = {}): Svg {
   return picture(curves.title, inWords(curves), view, options.theme ?? "auto", parts);
 }
 
-/** Rivals as lines over the same measured points, the first as the best of them. */
-export const drawRivals = (curves: Curves, options: CurvesOptions = {}): Svg => drawCurves(curves, options);
-
 const styleOf = (l: CurveLine, k: number): string =>
   l.accent ? "curve accent" : styles[Math.min(k, styles.length - 1)];
 

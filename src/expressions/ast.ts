@@ -75,15 +75,6 @@ export function renamed(e: Expression, name: (name: string) => string): Expressi
   }
 }
 
-/** The unit first written in an expression; bare numbers have none. */
-export function firstUnit(e: Expression): Unit | undefined {
-  let first: Unit | undefined;
-  visit(e, (part) => {
-    if (part.type === "number" && part.unit.name !== "") first ??= part.unit;
-  });
-  return first;
-}
-
 /** Calls `see` on an expression and all within it, from left to right. */
 export function visit(e: Expression, see: (part: Expression) => void): void {
   see(e);

@@ -1,6 +1,6 @@
 import type { Plant } from "../compile/plant.js";
 import type { Injection, Trial } from "../model/trial.js";
-import { type Drive, driveAt, instant } from "./linear-system.js";
+import { constantRate, type Drive, instant } from "./linear-system.js";
 import { moments } from "./moments.js";
 import { type AnyEngine, engineFor, trace } from "./trace.js";
 import type { NodeLook } from "./tracing.js";
@@ -49,7 +49,7 @@ export function driveOf(plant: Plant, injection: Injection): { drive: Drive; bef
   const { form, lasting } = injection;
   if (form.is === "pulse") {
     const amount = form.amount.of(plant.env);
-    return { drive: lasting > 0 ? rectangle(amount / lasting, lasting) : instant(amount), before: 0 };
+    return { drive: lasting > 0 ? constantRate(amount / lasting, lasting) : instant(amount), before: 0 };
   }
   const node = plant.entry.get(injection.at) as number;
   const flow = plant.nodes[node].inflow;
@@ -57,19 +57,9 @@ export function driveOf(plant: Plant, injection: Injection): { drive: Drive; bef
     // A level is a concentration in what enters, or a dosing rate: the dimension tells (a rate has no length in it).
     const perFlow = form.level.dimension[0] === -3 ? flow : 1;
     const before = (form.from?.of(plant.env) ?? 0) * perFlow;
-    return { drive: rectangle(form.level.of(plant.env) * perFlow - before, lasting || undefined), before };
+    return { drive: constantRate(form.level.of(plant.env) * perFlow - before, lasting || undefined), before };
   }
   return { drive: signalDrive(form.table.time, form.table.value, flow, injection.start), before: 0 };
-}
-
-function rectangle(rate: number, lasting?: number): Drive {
-  const times = lasting === undefined ? [0] : [0, lasting];
-  return {
-    amount: 0,
-    times: Float64Array.from(times),
-    level: Float64Array.from(times, (_, i) => (i === 0 ? rate : 0)),
-    slope: new Float64Array(times.length),
-  };
 }
 
 /** A measured inlet, straight between its points, nothing before the first and its last value after the last. */
@@ -81,9 +71,4 @@ function signalDrive(time: Float64Array, value: Float64Array, flow: number, star
     slope[i] = span > 0 ? ((value[i + 1] - value[i]) / span) * flow : 0;
   }
   return { amount: 0, times: time.map((t) => t - start), level: value.map((c) => c * flow), slope };
-}
-
-/** Tracer put in by a trial up to a time on its clock, in the unit of its amount (SI). */
-export function injectedBy(plant: Plant, trial: Trial, until: number): number {
-  return trial.injections.reduce((sum, i) => sum + driveAt(driveOf(plant, i).drive, until - i.start).total, 0);
 }

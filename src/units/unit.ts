@@ -20,8 +20,5 @@ export const fromUnit = (x: number, unit: Unit): number => x * unit.factor + uni
 /** An SI value, as a number in a unit. */
 export const inUnit = (si: number, unit: Unit): number => (si - unit.offset) / unit.factor;
 
-/** A difference in a unit, as SI: standard deviations and temperature steps know no offset. */
-export const differenceFromUnit = (x: number, unit: Unit): number => x * unit.factor;
-
 /** An SI difference, as a number in a unit. */
 export const differenceInUnit = (si: number, unit: Unit): number => si / unit.factor;
