@@ -7,6 +7,7 @@ import type { Unit } from "../units/unit.js";
 import { parameterBounds, requirements, sharesBesideRest } from "./bounds.js";
 import { exchanges } from "./exchanges.js";
 import { finiteValues } from "./finite.js";
+import { membersReached } from "./members.js";
 import { placeNames, streamTargets, unusedNames } from "./names.js";
 import type { Rule } from "./rule.js";
 import { splits } from "./splits.js";
@@ -22,6 +23,7 @@ const rules: readonly Rule[] = [
   zoneInlets,
   feedsAndOutlets,
   waysThrough,
+  membersReached,
   finiteValues,
   splits,
   exchanges,

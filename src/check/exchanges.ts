@@ -2,26 +2,25 @@ import { memberOf } from "../model/members.js";
 import type { Compartment } from "../model/network.js";
 import type { Rule } from "./rule.js";
 
-/** Exchange is between two single stirred bodies and written once. */
+/** Exchange is between two single stirred bodies, or one and a member of a `repeat`, and written once. */
 export const exchanges: Rule = (network, report, { nearest }) => {
   const bodies = new Map(network.compartments.map((c) => [c.name, c]));
   const seen = new Map<string, (typeof network)["at"]>();
   for (const c of network.compartments) {
     for (const e of c.exchanges) {
-      const partner = bodies.get(e.partner);
-      if (!partner && memberOf(network.compartments, e.partner)) {
-        report("not-yet", e.at, { what: `an exchange with '${e.partner}', a member of a \`repeat\`,` });
-        continue;
-      }
+      const member = memberOf(network.compartments, e.partner);
+      const partner = bodies.get(e.partner) ?? member;
       if (!partner) {
         const known = network.compartments.filter((b) => b !== c && refusal(b).length === 0).map((b) => b.name);
         const near = nearest(e.partner, known);
         report("unknown-place", e.at, { name: e.partner, wanted: "stirred tank", nearest: near, known });
         continue;
       }
-      const why = partner === c ? "that is the tank itself" : [c, partner].flatMap((b) => refusal(b))[0];
+      const refused = (member ? [c] : [c, partner]).find((b) => refusal(b).length > 0);
+      const why = partner === c ? "that is the tank itself" : refused && refusal(refused)[0];
       if (why) {
-        report("exchange-partner", e.at, { name: c.name, partner: e.partner, why });
+        const row = refused && memberOf([refused], `${refused.name}.1`)?.name;
+        report("exchange-partner", e.at, { name: c.name, partner: e.partner, why, row });
         continue;
       }
       const key = [c.name, e.partner].sort().join(" ");

@@ -1,4 +1,3 @@
-import { memberOf } from "../model/members.js";
 import type { Rule } from "./rule.js";
 
 /** Feeds, compartments and outlets share one set of names; every stream must go to one of them. */
@@ -27,8 +26,6 @@ export const streamTargets: Rule = (network, report, { nearest }) => {
       if (feed && !bodies.has(s.to) && !outlets.has(s.to)) {
         const into = feed.streams.length === 1 ? feed.streams[0].to : undefined;
         report("into-feed", s.at, { name: s.to, from: node.name, enters: into });
-      } else if (!bodies.has(s.to) && !outlets.has(s.to) && memberOf(network.compartments, s.to)) {
-        report("not-yet", s.at, { what: `a stream into '${s.to}', past the members before it,` });
       } else if (!bodies.has(s.to) && !outlets.has(s.to)) {
         const inlets = network.compartments.flatMap((c) => c.zones?.inlets.map((t) => `${c.name}.${t.name}`) ?? []);
         const known = [...bodies.keys(), ...inlets, ...outlets];

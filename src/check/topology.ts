@@ -1,3 +1,4 @@
+import { memberOf } from "../model/members.js";
 import type { Network } from "../model/network.js";
 import type { Graph } from "../numerics/graph.js";
 
@@ -29,7 +30,7 @@ export function topologyOf(network: Network): Topology {
   const bothTo = [...to];
   for (const c of network.compartments) {
     for (const e of c.exchanges) {
-      const partner = index.get(e.partner);
+      const partner = index.get(e.partner) ?? index.get(memberOf(network.compartments, e.partner)?.name ?? "");
       if (partner === undefined) continue;
       const me = index.get(c.name) as number;
       bothFrom.push(me, partner);

@@ -1,6 +1,7 @@
 import { compile } from "../compile/compile.js";
 import { evaluateNames } from "../compile/evaluate.js";
 import type { Plant } from "../compile/plant.js";
+import { broughtTo } from "../compile/through.js";
 import type { Known } from "../data/figure.js";
 import { settingsOfDay, shifted } from "../fit/settings.js";
 import type { Network } from "../model/network.js";
@@ -37,7 +38,5 @@ export function knownOnDay(network: Network, trial: Trial, of: (plant: Plant) =>
 export function flowThrough(plant: Plant, name: string): number {
   const port = [...plant.outlets, ...plant.feeds].find((p) => p.name === name);
   if (port) return port.flow;
-  const outlet = plant.network.groups.find((g) => g.name === name)?.outlets[0];
-  const body = outlet ?? name.replace(/\.\d+$/, "");
-  return plant.streams.filter((s) => s.role !== "exchange" && s.to === body).reduce((sum, s) => sum + s.flow, 0);
+  return broughtTo(plant, plant.network.groups.find((g) => g.name === name)?.outlets[0] ?? name);
 }

@@ -63,12 +63,17 @@ export interface Member {
 export interface NodeMaker {
   /** What streams bring and take, m3/s. */
   readonly through: number;
+  /**
+   * What streams bring to each of its members, m3/s, by suffix; those to the body itself under "". Undefined where no
+   * stream enters past the first.
+   */
+  readonly brought: ReadonlyMap<string, number> | undefined;
   cell(volume: number, suffix?: string): number;
   delay(volume: number): number;
   joint(suffix?: string): number;
   block(block: Block): number;
-  /** All of the through-flow that leaves the first enters the second. */
-  chain(from: number, to: number): void;
+  /** A flow from the first to the second, m3/s: all of the through-flow, where none is given. */
+  chain(from: number, to: number, flow?: number): void;
   /** A flow both ways between two nodes, m3/s, on top of the through-flow. */
   exchange(a: number, b: number, flow: number): void;
   /** Many cells at once, known by the names of a table; returns the first. Those without volume are joints. */

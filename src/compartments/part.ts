@@ -19,7 +19,7 @@ export const part: CompartmentKind = {
     },
     repeat: {
       shape: { is: "whole", atLeast: 1, atMost: 10_000 },
-      says: "How many of the part stand in series, each of them whole, as `name.1`, `name.2`, …. It must have one feed and one outlet.",
+      says: "How many of the part stand in series, each of them whole, as `name.1`, `name.2`, …. It must have one feed and one outlet. A stream may enter any of them (`to: name.2`); what follows the flow is then each one's own, as `name.2.renewal`.",
       default: "1",
       example: "3",
     },

@@ -18,14 +18,14 @@ export const stirred: CompartmentKind = {
     },
     repeat: {
       shape: { is: "whole", atLeast: 1, atMost: 10_000 },
-      says: "How many equal tanks in series share the volume; members are `name.1`, `name.2`, ….",
+      says: "How many equal tanks in series share the volume; members are `name.1`, `name.2`, …, where streams may enter (`to: name.2`; by `name` they enter the first), other tanks may exchange with them, and tracer may be put in and read.",
       example: "3",
       default: "1",
     },
     backflow: {
       shape: { is: "quantity", dimension: ["ratio", "flow"], atLeast: 0 },
       needs: "repeat",
-      says: "Flow that returns upstream between each two tanks of `repeat`, on top of what goes forward: a flow, or a share of the through-flow, which may exceed 100 %.",
+      says: "Flow that returns upstream between each two tanks of `repeat`, on top of what goes forward: a flow, or a share of what goes forward there, which may exceed 100 %. Where a stream enters a later member (`to: name.3`), more goes forward behind it, so a share is of more there.",
       example: "30 %",
     },
     stagnant: {
@@ -43,10 +43,12 @@ export const stirred: CompartmentKind = {
       const suffix = n > 1 ? String(i + 1) : "";
       return { suffix, node: of.values.volume > 0 ? maker.cell(of.values.volume / n, suffix) : maker.joint() };
     });
-    const back = backflow(maker, of);
+    const onward = onwardFlows(maker, n);
     for (let i = 1; i < n; i++) {
-      maker.chain(members[i - 1].node, members[i].node);
-      if (back > 0) maker.exchange(members[i - 1].node, members[i].node, back);
+      const [a, b] = [members[i - 1].node, members[i].node];
+      const back = backflow(onward[i - 1], of);
+      maker.chain(a, b, onward[i - 1]);
+      if (back > 0) maker.exchange(a, b, back);
     }
     const pockets = pocketsOf(of);
     if (pockets) {
@@ -62,8 +64,20 @@ export const stirred: CompartmentKind = {
   aspect: ({ counts }) => Math.min(counts.repeat ?? 1, 6),
 };
 
-/** m3/s. */
-function backflow({ through }: NodeMaker, { values, shares }: KindValues): number {
+/** What goes on from each member to the next, m3/s: more behind those that streams enter. */
+function onwardFlows({ through, brought }: NodeMaker, n: number): Float64Array {
+  const onward = new Float64Array(n - 1).fill(through);
+  if (!brought) return onward;
+  let flow = brought.get("") ?? 0;
+  for (let i = 0; i < n - 1; i++) {
+    flow += brought.get(String(i + 1)) ?? 0;
+    onward[i] = flow;
+  }
+  return onward;
+}
+
+/** Between two members, m3/s. */
+function backflow(onward: number, { values, shares }: KindValues): number {
   const written = values.backflow ?? 0;
-  return shares.has("backflow") ? written * through : written;
+  return shares.has("backflow") ? written * onward : written;
 }

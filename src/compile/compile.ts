@@ -1,3 +1,4 @@
+import { memberOf } from "../model/members.js";
 import type { Network } from "../model/network.js";
 import { backEdges, stronglyConnected } from "../numerics/graph.js";
 import type { Problem } from "../problems/problem.js";
@@ -86,16 +87,25 @@ function streamsOf(network: Network, env: Float64Array, flows: Flows): PlantStre
   const names = [...network.feeds, ...network.compartments, ...network.outlets].map((p) => p.name);
   const edges = { size: names.length, from: flows.streams.map((s) => s.from), to: flows.streams.map((s) => s.to) };
   const back = backEdges(edges, network.feeds.keys());
+  const zones = new Map(network.compartments.flatMap((c) => (c.zones ? [[c.name, c.zones] as const] : [])));
+  // The only port of a body needs no name.
+  const port = (name: string, suffix: string | undefined, side: "inlets" | "outlets"): string =>
+    suffix === undefined || zones.get(name)?.[side].length === 1 ? name : `${name}.${suffix}`;
   const streams = flows.streams.map((s, k): PlantStream => {
     const { split } = s.stream;
     const written =
       "value" in split ? split.value.at.source.text.slice(split.value.at.from, split.value.at.to) : split.is;
-    return { from: names[s.from], to: names[s.to], flow: s.flow, role: back[k] ? "recycle" : "forward", written };
+    const [from, to] = [names[s.from], names[s.to]];
+    const leaves = port(from, s.stream.leaves, "outlets");
+    const enters = port(to, s.stream.enters, "inlets");
+    return { from, to, leaves, enters, flow: s.flow, role: back[k] ? "recycle" : "forward", written };
   });
   const exchanges = network.compartments.flatMap((c) =>
     c.exchanges.map((e): PlantStream => {
       const written = e.flow.at.source.text.slice(e.flow.at.from, e.flow.at.to);
-      return { from: c.name, to: e.partner, flow: e.flow.of(env), role: "exchange", written };
+      const to = memberOf(network.compartments, e.partner)?.name ?? e.partner;
+      const flow = e.flow.of(env);
+      return { from: c.name, to, leaves: c.name, enters: e.partner, flow, role: "exchange", written };
     }),
   );
   return [...streams, ...exchanges];

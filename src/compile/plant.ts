@@ -58,8 +58,12 @@ export interface NodeColumns {
 }
 
 export interface PlantStream {
+  /** Names of feeds, compartments and outlets. */
   readonly from: string;
   readonly to: string;
+  /** The same to the point, where a body has several ways in or out: `chain.3`, `core.overflow`. */
+  readonly leaves: string;
+  readonly enters: string;
   readonly flow: number;
   readonly role: "forward" | "recycle" | "exchange";
   /** As the file says it: "30 %", "rest". */

@@ -31,17 +31,19 @@ export function spellOut(network: Network, env: Float64Array, flows: Flows): Spe
     entry.set(name, node);
     exit.set(name, node);
   };
+  const brought = broughtToMembers(network, flows);
   for (const f of network.feeds) joint(f.name);
   network.compartments.forEach((c, i) => {
     const through = flows.through[network.feeds.length + i];
     const full = (suffix = "") => (suffix ? `${c.name}.${suffix}` : c.name);
     const maker: NodeMaker = {
       through,
+      brought: brought.get(network.feeds.length + i),
       cell: (volume, suffix) => nodes.add(full(suffix), Part.Cell, volume),
       delay: (volume) => nodes.add(c.name, Part.Delay, volume),
       joint: (suffix) => nodes.add(full(suffix), Part.Joint, 0),
       block: (block) => nodes.add(c.name, Part.Block, block.volume + (block.pockets?.volume ?? 0), block),
-      chain: (a, b) => link(a, b, through),
+      chain: (a, b, flow = through) => link(a, b, flow),
       exchange,
       cells: (volume, names) => nodes.addCells(volume, `${c.name}.`, names),
       links: (a, b, q) => links.addAll(a, b, q),
@@ -76,4 +78,19 @@ export function spellOut(network: Network, env: Float64Array, flows: Flows): Spe
     if (outlets.length === 1 && out !== undefined) exit.set(name, out);
   }
   return { nodes, ...links.columns, entry, exit };
+}
+
+/** By place, what streams bring to each member of a body where one of them enters past the first. */
+function broughtToMembers(network: Network, { streams }: Flows): Map<number, Map<string, number>> {
+  const brought = new Map<number, Map<string, number>>();
+  const bodyAt = (place: number) => network.compartments[place - network.feeds.length];
+  for (const { to, stream } of streams) {
+    if (stream.enters !== undefined && !bodyAt(to)?.zones) brought.set(to, new Map());
+  }
+  for (const { to, flow, stream } of brought.size > 0 ? streams : []) {
+    const members = brought.get(to);
+    const suffix = stream.enters ?? "";
+    members?.set(suffix, (members.get(suffix) ?? 0) + flow);
+  }
+  return brought;
 }

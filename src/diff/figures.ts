@@ -58,11 +58,11 @@ function figures(plant: Plant, t: Translate): Map<string, Found> {
     void found.set(`${of} ${key}`, { of, name, shown: { value, unit: unitOf[of] } });
   for (const s of streams) {
     const bothWays = s.role === "exchange";
-    const ends = [t.place(s.from), t.place(s.to)];
+    const ends = [t.place(s.leaves), t.place(s.enters)];
     add(
       "flow",
       (bothWays ? ends.sort() : ends).join(bothWays ? "<>" : ">"),
-      `${s.from}${bothWays ? "<>" : ">"}${s.to}`,
+      `${s.leaves}${bothWays ? "<>" : ">"}${s.enters}`,
       s.flow,
     );
   }

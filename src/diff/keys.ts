@@ -56,7 +56,7 @@ export function streamKeys(streams: readonly Stream[], env: ArrayLike<number>, t
   const fixed = streams.some(({ split }) => split.is === "flow");
   const shares = streams.reduce((sum, { split }) => sum + (split.is === "share" ? split.value.of(env) : 0), 0);
   return new Map(
-    streams.map(({ to, split }): [string, string] => {
+    streams.map(({ to, enters, split }): [string, string] => {
       const key = (): string => {
         if ("value" in split) {
           const number = split.is === "share" && split.value.expression.type === "number" && !split.value.sd;
@@ -66,10 +66,14 @@ export function streamKeys(streams: readonly Stream[], env: ArrayLike<number>, t
         if (split.is === "all" || streams.length === 1) return "share 1";
         return numeric ? `share ${numberKey(1 - shares)}` : "rest";
       };
-      return [t.place(to), key()];
+      return [whole(t, to, enters), key()];
     }),
   );
 }
+
+/** A place to the point, where a body has several ways in: `chain.3`. */
+const whole = (t: Translate, to: string, enters: string | undefined): string =>
+  enters === undefined ? t.place(to) : `${t.place(to)}.${enters}`;
 
 /** Whole numbers and choices of a compartment by their keys. */
 export const wordsOf = ({ counts, ...more }: Compartment): Readonly<Record<string, string | number>> => ({

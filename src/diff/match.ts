@@ -59,7 +59,13 @@ class Pairs {
 
 /** Names without a counterpart as they are, marked: two of them are never the same. */
 const withOwn = (t: Translate): Translate => ({
-  place: (n) => (t.place(n) === "?" ? `?${n}` : t.place(n)),
+  place: (n) => {
+    if (t.place(n) !== "?") return t.place(n);
+    // What lies within a body, such as a member of a repeat, goes by the name of the body.
+    const dot = n.lastIndexOf(".");
+    const owner = dot < 0 ? "?" : t.place(n.slice(0, dot));
+    return owner === "?" ? `?${n}` : owner + n.slice(dot);
+  },
   value: (n) => (t.value(n) === "?" ? `?${n}` : t.value(n)),
 });
 

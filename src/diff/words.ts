@@ -38,9 +38,10 @@ export interface Streams {
 
 /** By the whole names of the places: `out`, `{core.feed: 30 %, out: rest}`. */
 export function places(streams: readonly Stream[]): string {
-  if (streams.length === 1 && streams[0].split.is === "all") return streams[0].to;
+  const end = ({ to, enters }: Stream): string => (enters === undefined ? to : `${to}.${enters}`);
+  if (streams.length === 1 && streams[0].split.is === "all") return end(streams[0]);
   const share = ({ split }: Stream): string => ("value" in split ? written(split.value.at) : split.is);
-  return `{${streams.map((s) => `${s.to}: ${share(s)}`).join(", ")}}`;
+  return `{${streams.map((s) => `${end(s)}: ${share(s)}`).join(", ")}}`;
 }
 
 function firstUnlike<T>(a: Told<T>, b: Told<T>, ways: readonly ((told: Told<T>) => string)[]): [string, string] {

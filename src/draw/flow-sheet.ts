@@ -89,7 +89,7 @@ function streamsOf(
       to: s.to,
       flow: s.flow,
       role: bypass ? "bypass" : s.role,
-      label: alone ? "" : label(s, unit),
+      label: alone ? toMember(s).trim() : label(s, unit) + toMember(s),
       ...(accents?.has(`${s.from}>${s.to}`) ? { accent: true } : {}),
     };
   });
@@ -101,6 +101,9 @@ function label(s: PlantStream, unit: SheetUnit): string {
   const written = typeset(s.written.trim());
   return plain(s) || written === flow || written.length > 24 ? flow : `${flow} (${written})`;
 }
+
+/** Which of a row of bodies it goes to, or which inlet it takes, where that is not the first or only one. */
+const toMember = ({ to, enters }: PlantStream): string => (enters === to ? "" : ` to ${enters}`);
 
 const plain = (s: PlantStream): boolean => s.written === "all" || s.written === "rest";
 

@@ -27,6 +27,8 @@ export function pastPorts(
 const join = (a: PlantStream, b: PlantStream, many: boolean): PlantStream => ({
   from: a.from,
   to: b.to,
+  leaves: a.leaves,
+  enters: b.enters,
   flow: many ? a.flow : b.flow,
   role: a.role === "forward" ? b.role : a.role,
   written: many || b.written === "all" ? a.written : b.written,
@@ -36,7 +38,7 @@ const join = (a: PlantStream, b: PlantStream, many: boolean): PlantStream => ({
 function merged(streams: readonly PlantStream[]): PlantStream[] {
   const ways = new Map<string, PlantStream>();
   for (const s of streams) {
-    const key = `${s.from}>${s.to}>${s.role}`;
+    const key = `${s.leaves}>${s.enters}>${s.role}`;
     const same = ways.get(key);
     ways.set(key, same ? { ...same, flow: same.flow + s.flow, written: "all" } : s);
   }

@@ -1,4 +1,5 @@
 import type { Plant, PlantNode } from "../compile/plant.js";
+import { broughtTo } from "../compile/through.js";
 import { membersOf } from "../model/members.js";
 import type { Compartment } from "../model/network.js";
 import { dimensionKey, dimensions } from "../units/dimension.js";
@@ -13,7 +14,9 @@ export function innerFlow(plant: Plant, { from, to, flow, symbol }: Link): strin
   const key = `${a.inner || b.inner}.exchange`;
   if (holds(plant, body, key, count * flow)) return `${symbol} = ${shared(keyOf(key, body.name), count)}`;
   // Without a flow or share among its keys there is nothing but the through-flow to go round inside.
-  const mixed = Object.values(body.values).some((v) => flowing.has(dimensionKey(v.dimension)));
+  const mixed =
+    Object.values(body.values).some((v) => flowing.has(dimensionKey(v.dimension))) ||
+    Math.abs(flow - broughtTo(plant, body.name)) > 1e-9 * flow; // a member that streams enter has more behind it
   return mixed || body.zones || a.inner || b.inner ? symbol : `${symbol} = ${throughFlow(body.name)}`;
 }
 

@@ -27,6 +27,9 @@ export interface Link extends Where {
 export interface WrittenStream extends Where {
   readonly from: string;
   readonly to: string;
+  /** The same to the point: `chain.3`, where a body has several ways in or out. */
+  readonly leaves: string;
+  readonly enters: string;
   /** m3/s. */
   readonly flow: number;
   readonly is: { readonly stream: Stream } | { readonly exchange: Exchange };
@@ -41,7 +44,7 @@ export function writtenStreams({ network, streams }: Plant): WrittenStream[] {
       c.exchanges.map((exchange) => ({ ...whereOf(exchange.at), is: { exchange } })),
     ),
   ];
-  return streams.map(({ from, to, flow }, i) => ({ from, to, flow, ...written[i] }));
+  return streams.map(({ from, to, leaves, enters, flow }, i) => ({ from, to, leaves, enters, flow, ...written[i] }));
 }
 
 /**
@@ -53,17 +56,17 @@ export function linksOf(plant: Plant): Link[] {
   const ends = (from: number, to: number, flow: number): string => `${from} ${to} ${flow}`;
   for (const l of writtenStreams(plant).flatMap((s): Link[] => {
     const bothWays = "exchange" in s.is;
-    const symbol = streamFlow(s.from, s.to, bothWays);
+    const symbol = streamFlow(s.leaves, s.enters, bothWays);
     const link = (a: string, b: string): Link => ({
       from: plant.exit.get(a) ?? -1,
       to: plant.entry.get(b) ?? -1,
       flow: s.flow,
       symbol,
-      says: bothWays ? `exchange of ${s.from} and ${s.to}` : `stream ${a} to ${b}`,
+      says: bothWays ? `exchange of ${s.leaves} and ${s.enters}` : `stream ${a} to ${b}`,
       file: s.file,
       line: s.line,
     });
-    return bothWays ? [link(s.from, s.to), link(s.to, s.from)] : [link(s.from, s.to)];
+    return bothWays ? [link(s.leaves, s.enters), link(s.enters, s.leaves)] : [link(s.leaves, s.enters)];
   })) {
     const key = ends(l.from, l.to, l.flow);
     waiting.set(key, [...(waiting.get(key) ?? []), l]);

@@ -77,7 +77,7 @@ function flowsTable(plant: Plant): string {
   const arriving = (place: string): string =>
     streams
       .filter((s) => "stream" in s.is && s.to === place)
-      .map((s) => streamFlow(s.from, s.to))
+      .map((s) => streamFlow(s.leaves, s.enters))
       .join(" + ");
   const through = (place: string): number =>
     streams.reduce((sum, s) => sum + ("stream" in s.is && s.to === place ? s.flow : 0), 0);
@@ -125,10 +125,10 @@ function repeatInlets({ network: { names, groups, compartments }, env }: Plant) 
 const portOf = (place: string): string => place.slice(place.lastIndexOf(".") + 1);
 
 /** How much a stream carries, as the file decides it. */
-function streamRule({ from, to, is }: WrittenStream, all: readonly WrittenStream[]): string {
-  if ("exchange" in is) return `${streamFlow(from, to, true)} = ${texExpression(is.exchange.flow.expression)}`;
+function streamRule({ from, leaves, enters, is }: WrittenStream, all: readonly WrittenStream[]): string {
+  if ("exchange" in is) return `${streamFlow(leaves, enters, true)} = ${texExpression(is.exchange.flow.expression)}`;
   const { split } = is.stream;
-  const left = streamFlow(from, to);
+  const left = streamFlow(leaves, enters);
   if (split.is === "all") return `${left} = ${throughFlow(from)}`;
   if (split.is === "flow") return `${left} = ${texExpression(split.value.expression)}`;
   if (split.is === "share") {
@@ -136,7 +136,7 @@ function streamRule({ from, to, is }: WrittenStream, all: readonly WrittenStream
     return `${left} = ${split.value.expression.type === "binary" ? `\\left(${share}\\right)` : share}\\, ${throughFlow(from)}`;
   }
   const others = all.filter((o) => o.from === from && "stream" in o.is && o.is.stream !== is.stream);
-  return `${left} = ${[throughFlow(from), ...others.map((o) => streamFlow(from, o.to))].join(" - ")}`;
+  return `${left} = ${[throughFlow(from), ...others.map((o) => streamFlow(o.leaves, o.enters))].join(" - ")}`;
 }
 
 function bodiesTable(plant: Plant): string {

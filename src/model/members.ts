@@ -5,9 +5,20 @@ export const membersOf = ({ name, counts }: Pick<Compartment, "name" | "counts">
   (counts.repeat ?? 1) > 1 ? Array.from({ length: counts.repeat }, (_, i) => `${name}.${i + 1}`) : [];
 
 /** The compartment that a name is a member of: `chain` for `chain.2`. */
-export const memberOf = (compartments: readonly Compartment[], name: string): Compartment | undefined => {
-  const [, owner, suffix] = /^(.+)\.([1-9]\d*)$/.exec(name) ?? [];
+export const memberOf = <C extends Pick<Compartment, "name" | "counts">>(
+  compartments: readonly C[],
+  name: string,
+): C | undefined => {
+  const suffix = memberNumber(name);
+  if (suffix === undefined) return undefined;
+  const owner = name.slice(0, name.lastIndexOf("."));
   const body = compartments.find((c) => c.name === owner);
   const repeat = body?.counts.repeat ?? 1;
-  return repeat > 1 && Number(suffix) <= repeat ? body : undefined;
+  return repeat > 1 && suffix <= repeat ? body : undefined;
+};
+
+/** The number at the end of a name such as `chain.2`. */
+export const memberNumber = (name: string): number | undefined => {
+  const suffix = /\.([1-9]\d*)$/.exec(name)?.[1];
+  return suffix === undefined ? undefined : Number(suffix);
 };

@@ -90,13 +90,14 @@ export interface Stream {
   readonly to: string;
   readonly at: Span;
   readonly split: { readonly is: "share" | "flow"; readonly value: Value } | { readonly is: "rest" | "all" };
-  /** The inlet by which it enters a body that has several, and the outlet by which it leaves one. */
+  /** The inlet, or the member of a repeat, by which it enters a body that has several, and the outlet by which it leaves one. */
   readonly enters?: string | undefined;
   readonly leaves?: string | undefined;
 }
 
 /** Equal flow both ways between a compartment and a partner. */
 export interface Exchange {
+  /** A compartment, or a member of a repeat: `chain.2`. */
   readonly partner: string;
   readonly at: Span;
   readonly flow: Value;

@@ -1,4 +1,5 @@
 import type { Plant } from "../compile/plant.js";
+import { broughtTo } from "../compile/through.js";
 import type { Report } from "../problems/report.js";
 import { dimensions } from "../units/dimension.js";
 import { formatNumber, formatQuantity } from "../units/format.js";
@@ -8,14 +9,12 @@ const oneZone = 100;
 
 /** Warns of exchanges so fast that the two tanks are one. Where no stream passes either, the feed of the vessel is the measure. */
 export function fastExchanges(plant: Plant, report: Report): void {
-  const through = new Map<string, number>();
-  for (const s of plant.streams) if (s.role !== "exchange") through.set(s.to, (through.get(s.to) ?? 0) + s.flow);
   const feed = plant.feeds.reduce((sum, f) => sum + f.flow, 0);
   const unit = plant.network.units.unitFor(dimensions.flow);
   for (const c of plant.network.compartments) {
     for (const e of c.exchanges) {
       const flow = e.flow.of(plant.env);
-      const passing = Math.max(through.get(c.name) ?? 0, through.get(e.partner) ?? 0) || feed;
+      const passing = Math.max(broughtTo(plant, c.name), broughtTo(plant, e.partner)) || feed;
       if (flow <= oneZone * passing) continue;
       report("exchange-fast", e.flow.at, {
         name: c.name,

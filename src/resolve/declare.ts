@@ -12,6 +12,8 @@ import type { Binding, Instance } from "./part.js";
 export interface Declared {
   /** With the parts that it lies in: `core.tanks`. */
   readonly name: string;
+  /** The same without the numbers of repeats. */
+  readonly shared: string;
   /** `inflow`: what streams bring to a feed of a part. */
   readonly role: Named["role"];
   readonly at: Span;
@@ -30,15 +32,15 @@ export function declareNames(instances: readonly Instance[], report: Report): De
   const used = new Set<Binding>();
   for (const instance of instances) declared.push(...declareIn(instance, used, report));
   const all = new Set<Binding>(instances.flatMap((i) => [...i.bindings.values()]));
-  const lost = instances.flatMap((i) => [...lostParts(i)].map((name) => `${i.prefix}${name}.`));
+  const lost = instances.flatMap((i) => [...lostParts(i)].map((name) => `${i.shared}${name}.`));
   for (const binding of all) {
-    const name = `${binding.prefix}${binding.part}.${binding.key.text}`;
+    const name = `${binding.shared}${binding.part}.${binding.key.text}`;
     if (!used.has(binding) && !lost.some((prefix) => name.startsWith(prefix))) refuseBinding(binding, declared, report);
   }
   return declared;
 }
 
-function declareIn({ tree, prefix, bindings }: Instance, used: Set<Binding>, report: Report): Declared[] {
+function declareIn({ tree, prefix, shared, bindings }: Instance, used: Set<Binding>, report: Report): Declared[] {
   const declared: Declared[] = [];
   const seen = new Map<string, { at: Span; role: string }>();
   for (const [key, role] of [
@@ -56,10 +58,11 @@ function declareIn({ tree, prefix, bindings }: Instance, used: Set<Binding>, rep
       seen.set(name.text, { at: name.at, role });
       const details = value.type === "map" ? value : undefined;
       const own = { node: details ? child(value, "value") : value, prefix };
-      const binding = bindings.get(prefix + name.text);
+      const binding = bindings.get(shared + name.text);
       if (binding) used.add(binding);
       declared.push({
         name: prefix + name.text,
+        shared: shared + name.text,
         // Who gives a value from outside has the say over it: nothing inside is left to move.
         role: binding ? "constant" : role,
         at: binding ? binding.key.at : name.at,
@@ -73,6 +76,7 @@ function declareIn({ tree, prefix, bindings }: Instance, used: Set<Binding>, rep
   for (const { key: name, value } of entriesOf(child(tree, "feeds"))) {
     declared.push({
       name: `${prefix}${name.text}.flow`,
+      shared: `${shared}${name.text}.flow`,
       role: isPart ? "inflow" : "feed-flow",
       at: name.at,
       node: isPart ? undefined : child(value, "flow"),
@@ -85,10 +89,11 @@ function declareIn({ tree, prefix, bindings }: Instance, used: Set<Binding>, rep
   return declared;
 }
 
-function refuseBinding({ key, part, prefix }: Binding, declared: readonly Declared[], report: Report): void {
-  const within = `${prefix}${part}.`;
-  const inside = declared.filter((d) => d.name.startsWith(within));
-  const open = inside.filter((d) => d.role !== "inflow" && !d.replaces).map((d) => d.name.slice(within.length));
-  const flow = inside.some((d) => d.role === "inflow" && d.name === within + key.text);
+function refuseBinding({ key, part, shared }: Binding, declared: readonly Declared[], report: Report): void {
+  const within = `${shared}${part}.`;
+  const inside = declared.filter((d) => d.shared.startsWith(within));
+  const unbound = inside.filter((d) => d.role !== "inflow" && !d.replaces);
+  const open = [...new Set(unbound.map((d) => d.shared.slice(within.length)))];
+  const flow = inside.some((d) => d.role === "inflow" && d.shared === within + key.text);
   report("unknown-binding", key.at, { name: key.text, part, nearest: nearest(key.text, open), known: open, flow });
 }

@@ -97,13 +97,23 @@ function waysOf({ feeds, compartments, groups }: Places): Ways {
   const inlets = new Map<string, string>();
   for (const g of groups) {
     if (g.inlets.length === 1 && g.outlets.length === 1) through.set(g.outlets[0], g.inlets[0]);
-    // Values are the same in all repeats, so their names have no number.
+    // Values that are the same in all repeats have no number in their names.
     for (const inlet of g.inlets) {
-      const name = inlet.replace(/\.\d+(?=\.)/g, "");
-      if (!inlets.has(name)) inlets.set(name, inlet);
+      for (const name of withoutNumbers(inlet)) if (!inlets.has(name)) inlets.set(name, inlet);
     }
   }
   return { into, feeds: new Map(feeds.map((f) => [f.name, f])), through, inlets };
+}
+
+/** A name, and what it is without some or all of the numbers of repeats in it. */
+function withoutNumbers(name: string): string[] {
+  const [first, ...rest] = name.split(".");
+  let heads = [first];
+  for (const piece of rest) {
+    const longer = heads.map((head) => `${head}.${piece}`);
+    heads = /^\d+$/.test(piece) ? longer.concat(heads) : longer;
+  }
+  return heads;
 }
 
 /** Through-flow of one place: a small linear system over all that lies on the way to it, in flow order (Tarjan 1972). */

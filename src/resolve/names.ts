@@ -1,14 +1,12 @@
-import { namesIn } from "../expressions/ast.js";
-import { isFault } from "../expressions/fault.js";
-import { parseValue } from "../expressions/parse.js";
 import type { Named } from "../model/network.js";
 import type { Value } from "../model/value.js";
 import { collector, type Report } from "../problems/report.js";
-import { child, type Tree, textOf } from "../read/tree.js";
+import { child, textOf } from "../read/tree.js";
 import { type Dimension, type DimensionName, dimensions, sameDimension } from "../units/dimension.js";
 import { type Declared, declareNames } from "./declare.js";
 import { dependencyOrder } from "./dependency-order.js";
 import type { Instance } from "./part.js";
+import { needsOf, shareNames } from "./shared-names.js";
 import { resolveValue, type Scope } from "./value.js";
 
 /** The values of a network that have names, resolved in an order in which each needs only earlier ones. */
@@ -25,32 +23,34 @@ export interface ResolvedNames {
 
 /** Constants, parameters and flows of feeds, of a document and of all its parts. Broken ones are reported and left out. */
 export function resolveNames(instances: readonly Instance[], report: Report): ResolvedNames {
-  const declared = declareNames(instances, report);
-  const slots = new Map(declared.map((d, i) => [d.name, i]));
-  const found = new Map<string, Dimension>();
-  for (const d of declared) if (d.role === "inflow") found.set(d.name, dimensions.flow);
+  const { declared, slots } = shareNames(declareNames(instances, report));
+  const found = new Map<number, Dimension>();
+  declared.forEach((d, slot) => {
+    if (d.role === "inflow") found.set(slot, dimensions.flow);
+  });
   const values = new Map<number, Value>();
+  const wholeName = (name: string): string => declared[slots.get(name) ?? -1]?.name ?? name;
   const scope = (prefix: string): Scope => ({
     slot: (name) => slots.get(prefix + name),
-    dimension: (name) => found.get(prefix + name),
+    dimension: (name) => found.get(slots.get(prefix + name) ?? -1),
     unit: (name) => values.get(slots.get(prefix + name) ?? -1)?.unit,
     scale: (name) => values.get(slots.get(prefix + name) ?? -1)?.scale,
     names: () => [...slots.keys()].filter((n) => n.startsWith(prefix)).map((n) => n.slice(prefix.length)),
-    ...(prefix === "" ? {} : { whole: (name: string) => prefix + name }),
+    ...(prefix === "" ? {} : { whole: (name: string) => wholeName(prefix + name) }),
   });
-  const needs = declared.map((d) => namesUsed(d.node).flatMap((n) => slots.get(d.prefix + n) ?? []));
+  const needs = needsOf(declared, slots);
   const { order, circles } = dependencyOrder(needs);
   for (const circle of circles) {
     const { node, at } = declared[circle[0]];
     report("circular-names", node?.at ?? at, { circle: circle.map((i) => declared[i].name) });
   }
   for (const slot of order) {
-    const { node, prefix, name, role } = declared[slot];
+    const { node, prefix, role } = declared[slot];
     const wanted = replacedDimension(declared[slot], scope) ?? declared[slot].wanted;
     const value = role === "inflow" ? undefined : resolveValue(node, wanted, scope(prefix), report);
     if (!value) continue;
     values.set(slot, value);
-    found.set(name, value.dimension);
+    found.set(slot, value.dimension);
   }
   // Bounds may use any name, so they come when all are known.
   const names = declared.flatMap((d, slot): Named[] => {
@@ -89,12 +89,6 @@ function details(
     if (low && high) between = [low, high];
   }
   return { between, spacing, about };
-}
-
-function namesUsed(node: Tree | undefined): readonly string[] {
-  if (node?.type !== "scalar") return [];
-  const written = parseValue(node.text);
-  return isFault(written) ? [] : namesIn(written.expression);
 }
 
 /** Dimension by its name, or names. */

@@ -35,10 +35,11 @@ function placeBodies(
     }
     const { part, ways } = body;
     const leads = (outlet: string): Stream[] => (ways.get(outlet) ?? []).map((s) => ({ ...s, to: prefix + s.to }));
-    const place = (name: string, next: ((outlet: string) => Stream[]) | undefined): Group => {
+    const place = (name: string, next: ((outlet: string) => Stream[]) | undefined, repeat = 0): Group => {
       const first = compartments.length;
       const at = groups.length;
-      placePart(part, `${name}.`, next ?? leads, locals, compartments, groups);
+      const instance = part.instances[repeat] ?? part.instances[0];
+      placePart(instance, `${name}.`, next ?? leads, locals, compartments, groups);
       const group = groupOf(part, name, compartments.slice(first));
       groups.splice(at, 0, group);
       return group;
@@ -51,6 +52,7 @@ function placeBodies(
         place(
           `${name}.${i + 1}`,
           i + 1 < part.repeat ? () => [onward(`${name}.${i + 2}.${part.inlets[0]}`, part)] : undefined,
+          i,
         ),
       );
       const { inlets } = all[0];
@@ -61,7 +63,7 @@ function placeBodies(
 }
 
 function placePart(
-  { instance }: Part,
+  instance: Instance,
   prefix: string,
   leads: (outlet: string) => readonly Stream[],
   locals: ReadonlyMap<Instance, LocalNetwork>,
@@ -103,8 +105,8 @@ const onward = (to: string, part: Part): Stream => ({ to, at: part.at, split: { 
 const groupOf = (part: Part, name: string, members: readonly Compartment[]): Group => ({
   name,
   at: part.at,
-  title: textOf(part.instance.tree, "network") ?? "",
-  path: part.instance.tree.at.source.path,
+  title: textOf(part.instances[0].tree, "network") ?? "",
+  path: part.instances[0].tree.at.source.path,
   members: members.map((c) => c.name),
   inlets: part.inlets.map((inlet) => `${name}.${inlet}`),
   outlets: part.outlets.map((outlet) => `${name}.${outlet}`),

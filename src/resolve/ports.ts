@@ -35,6 +35,9 @@ export function aimStreams(from: string, streams: readonly Stream[], places: Pla
     const [name, ...rest] = s.to.split(".");
     const part = places.parts.get(name);
     if (part) return { ...s, to: inletOf(part, rest.join("."), s, report) };
+    const body = memberOf(places.bodies, s.to);
+    // What enters the first member enters the body.
+    if (body) return { ...s, to: body.name, ...(s.to.endsWith(".1") ? {} : { enters: rest.join(".") }) };
     if (places.check && !places.lost.has(name)) mustExist(from, s, places, report);
     return s;
   });
@@ -45,21 +48,24 @@ export const isPlace = (to: string, { feeds, bodies, parts, outlets }: Places): 
   feeds.has(to) ||
   outlets.includes(to) ||
   bodies.some((b) => b.name === to) ||
-  [...parts.values()].some((p) => p.inlets.some((inlet) => to === `${firstOf(p)}.${inlet}`));
+  [...parts.values()].some((p) => p.inlets.some((inlet) => to.startsWith(`${p.name}.`) && to.endsWith(`.${inlet}`)));
 
 function inletOf(part: Part, port: string, { to, at }: Stream, report: Report): string {
   const { name, inlets: known } = part;
   if (port === "" && known.length === 1) return `${firstOf(part)}.${known[0]}`;
   if (port === "") report("port-open", at, { part: name, side: "inlet", known });
   else if (known.includes(port)) return `${firstOf(part)}.${port}`;
-  else if (isRepeat(part, port)) report("not-yet", at, { what: `a stream into '${to}', past the repeats before it,` });
-  else report("unknown-port", at, { name: port, part: name, side: "inlet", nearest: nearest(port, known), known });
+  else {
+    const [number, inlet = known[0], ...more] = port.split(".");
+    if (isRepeat(part, number) && known.includes(inlet) && more.length === 0) return `${name}.${number}.${inlet}`;
+    report("unknown-port", at, { name: port, part: name, side: "inlet", nearest: nearest(port, known), known });
+  }
   return to;
 }
 
-/** Does a port begin with the number of one of a part's repeats, as `2` or `2.feed`? */
-const isRepeat = ({ repeat }: Part, port: string): boolean =>
-  repeat > 1 && /^[1-9]\d*(\.|$)/.test(port) && Number.parseInt(port, 10) <= repeat;
+/** Is it the number of one of a part's repeats? */
+const isRepeat = ({ repeat }: Part, number: string): boolean =>
+  repeat > 1 && /^[1-9]\d*$/.test(number) && Number(number) <= repeat;
 
 function mustExist(
   from: string,
@@ -69,8 +75,7 @@ function mustExist(
 ): void {
   const body = bodies.find((b) => b.name === to);
   const feed = feeds.get(to);
-  // A member of a repeat is told with the rest of the network.
-  if (body || outlets.includes(to) || memberOf(bodies, to)) return;
+  if (body || outlets.includes(to)) return;
   if (feed) {
     const enters = feed.streams.length === 1 ? feed.streams[0].to : undefined;
     report("into-feed", at, { name: to, from, enters });

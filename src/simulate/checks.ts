@@ -1,5 +1,6 @@
 import { kindValues } from "../compile/evaluate.js";
 import type { Plant } from "../compile/plant.js";
+import { broughtTo } from "../compile/through.js";
 import { memberOf } from "../model/members.js";
 import type { Check } from "../model/network.js";
 import { meanAges } from "./ages.js";
@@ -63,11 +64,10 @@ function volumeOfNodes({ size, volume, nameOf }: Plant["columns"], name: string)
   return sum;
 }
 
-/** Through-flow, exchange and backflow left out, so that of a repeat all members have it; of a part, what enters by all its inlets. */
-function flowOf({ network, feeds, streams }: Plant, name: string): number {
-  const feed = feeds.find((f) => f.name === name);
+/** Through-flow, exchange and backflow left out; of a part, what enters by all its inlets. */
+function flowOf(plant: Plant, name: string): number {
+  const feed = plant.feeds.find((f) => f.name === name);
   if (feed) return feed.flow;
-  const body = memberOf(network.compartments, name)?.name ?? name;
-  const ways = new Set(network.groups.find((g) => g.name === name)?.inlets ?? [body]);
-  return streams.reduce((sum, s) => sum + (ways.has(s.to) && s.role !== "exchange" ? s.flow : 0), 0);
+  const ways = plant.network.groups.find((g) => g.name === name)?.inlets ?? [name];
+  return ways.reduce((sum, way) => sum + broughtTo(plant, way), 0);
 }

@@ -12,7 +12,7 @@ export function networkJson(plant: Plant): object {
   const vessel = vesselOf(plant);
   return {
     flows: Object.fromEntries(
-      plant.streams.map((s) => [`${s.from}${s.role === "exchange" ? "<>" : ">"}${s.to}`, flow(s.flow)]),
+      plant.streams.map((s) => [`${s.leaves}${s.role === "exchange" ? "<>" : ">"}${s.enters}`, flow(s.flow)]),
     ),
     volumes: Object.fromEntries(bodies.map((b) => [b.name, volume(b.volume)])),
     spaceTimes: Object.fromEntries(bodies.map((b) => [b.name, quantity(b.spaceTime, units.time)])),

@@ -12,7 +12,7 @@ export function networkText(plant: Plant): string {
   const streams = table(
     [{ title: "stream" }, { title: `flow, ${flow.name}`, align: "right" }, { title: "written" }, { title: "" }],
     plant.streams.map((s) => [
-      `${s.from} ${s.role === "exchange" ? "<>" : "->"} ${s.to}`,
+      `${s.leaves} ${s.role === "exchange" ? "<>" : "->"} ${s.enters}`,
       formatNumber(inUnit(s.flow, flow)),
       s.written === "all" ? "" : s.written,
       s.role === "forward" ? "" : s.role,

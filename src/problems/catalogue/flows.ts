@@ -112,10 +112,15 @@ export const flowEntries = {
     fix: ({ enters }) =>
       enters ? `send it to '${enters}', which the feed enters` : "send it to the compartment that the feed enters",
   }),
-  "exchange-partner": entry<{ name: string; partner: string; why: string }>({
+  "exchange-partner": entry<{ name: string; partner: string; why: string; row: string | undefined }>({
     severity: "error",
     says: ({ name, partner, why }) => `'${name}' cannot exchange with '${partner}': ${why}`,
-    fix: "exchange works between two different single tanks of `kind: stirred`; pockets along a tube or a row of tanks are its `stagnant: {volume: 20 L, exchange: 1 L/min}`",
+    fix: ({ row }) =>
+      `${
+        row
+          ? `say which tank of the row, at the other tank: \`exchange: {${row}.2: 1 L/min}\``
+          : "exchange works between two different single tanks of `kind: stirred`"
+      }; pockets along a ${row ? "" : "tube or a "}row of tanks are its \`stagnant: {volume: 20 L, exchange: 1 L/min}\``,
   }),
   "exchange-twice": entry<{ name: string; partner: string }>({
     severity: "error",
