@@ -1,13 +1,15 @@
 import type { Algebra } from "../numerics/algebra.js";
 import { type Complex, complex } from "../numerics/complex.js";
 import { type Taylor, taylor, variable } from "../numerics/taylor.js";
+import type { Stays } from "./stays.js";
 
 /** How a block's liquid mixes on its way, for what its curve alone does not settle: reaction. */
 export type Mixing =
   | { readonly is: "plug" }
+  /** Between closed ends, whatever the ends are for tracer: reaction is between inlet and outlet only (Wehner & Wilhelm 1956). */
   | { readonly is: "dispersed"; readonly peclet: number }
-  /** Every parcel stays by itself from inlet to outlet. */
-  | { readonly is: "segregated" };
+  /** Entering streams mix; from there every parcel stays by itself to the outlet, its stay shared out as here. */
+  | { readonly is: "segregated"; readonly stays: Stays };
 
 /** Quiet liquid that exchanges with the flow all along a body: volume held in m3, exchange in m3/s. */
 export interface Pockets {

@@ -3,6 +3,7 @@ import { scaledExpint } from "../numerics/expint.js";
 import { laminarBody } from "../svg/bodies.js";
 import type { Block } from "./block.js";
 import type { CompartmentKind, Ports } from "./kind.js";
+import { laminarStays } from "./stays.js";
 
 /** Laminar flow in a round tube. R.C.L. Bosworth, Phil. Mag. 39 (1948) 847-862; Danckwerts, Chem. Eng. Sci. 2 (1953) 1-13. */
 export const laminar: CompartmentKind = {
@@ -34,7 +35,7 @@ function laminarTube(volume: number): Block {
     complex.scale(scaledExpint(3, complex.scale(s, volume / flow / 2)), 2);
   return {
     is: "laminar flow",
-    mixing: { is: "segregated" },
+    mixing: { is: "segregated", stays: laminarStays },
     volume,
     pockets: undefined,
     equation: ({ transfer, flow, key }) =>

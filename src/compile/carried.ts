@@ -13,7 +13,7 @@ const limits: Readonly<Record<Work, { says: string; nodes: number; circle: numbe
   reaction: { says: "solve reaction in", nodes: 100_000, circle: 1_000 },
 };
 
-/** Why this version cannot do a work: bodies that only their transfer function describes (all but laplace), too many nodes. */
+/** Why this version cannot do a work: bodies that only their transfer function describes (tracer), too many nodes. */
 export function uncarried(plant: Plant, work: Work = "tracer"): Problem[] {
   const { size, part } = plant.columns;
   const { says, nodes, circle } = limits[work];
@@ -23,11 +23,11 @@ export function uncarried(plant: Plant, work: Work = "tracer"): Problem[] {
   ];
   if (size > nodes) return tooMany(size, nodes, false);
   if (largest > circle) return tooMany(largest, circle, true);
-  if (work === "laplace" || !part.includes(Part.Block)) return [];
+  if (work !== "tracer" || !part.includes(Part.Block)) return [];
   return plant.nodes.flatMap(({ part, block, name }) => {
     if (part !== Part.Block || !block) return [];
     const { at } = plant.network.compartments.find((body) => body.name === name) ?? plant.network;
-    return [problem("not-carried", at, { name, is: block.is, reacts: work === "reaction" })];
+    return [problem("not-carried", at, { name, is: block.is })];
   });
 }
 

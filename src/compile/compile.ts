@@ -64,6 +64,7 @@ function plantOf(network: Network, env: Float64Array, volumes: Float64Array, flo
       volume: nodes.volume.subarray(0, nodes.size),
       inflow,
       nameOf: (i) => nodes.nameOf(i),
+      blockAt: (i) => nodes.blockAt(i),
     },
     from,
     to,

@@ -43,6 +43,10 @@ export class NodeList {
     return range ? range.prefix + range.names.nameOf(i - range.first) : this.names[i];
   }
 
+  blockAt(i: number): Block | undefined {
+    return this.blocks.get(i);
+  }
+
   /** The cell of a table by its whole name. */
   cellNamed(name: string): number | undefined {
     for (const { first, prefix, names } of this.ranges) {
@@ -82,6 +86,7 @@ export const columnsOf = (nodes: readonly PlantNode[]): NodeColumns => ({
   volume: Float64Array.from(nodes, (n) => n.volume),
   inflow: Float64Array.from(nodes, (n) => n.inflow),
   nameOf: (i) => nodes[i].name,
+  blockAt: (i) => nodes[i].block,
 });
 
 /** Links as columns. */

@@ -55,6 +55,8 @@ export interface NodeColumns {
   /** m3/s */
   readonly inflow: Float64Array;
   nameOf(node: number): string;
+  /** There where `part` is `Block`. */
+  blockAt(node: number): Block | undefined;
 }
 
 export interface PlantStream {

@@ -93,8 +93,8 @@ function fraction(a: (k: number) => number, b: (k: number) => number): number {
   return 1 / f;
 }
 
-/** x^a e^-x / Gamma(a + 1) */
-function poissonTerm(a: number, x: number): number {
+/** x^a e^-x / Gamma(a + 1), a, x > 0, to full relative accuracy. Loader (2000). */
+export function poissonTerm(a: number, x: number): number {
   if (a < 1) return Math.exp(a * Math.log(x) - x - logGamma(a + 1));
   return Math.exp(-stirlingError(a) - deviance(a, x)) / Math.sqrt(2 * Math.PI * a);
 }

@@ -1,10 +1,9 @@
 import type { Plant } from "../compile/plant.js";
 import { integrate } from "../numerics/integrate.js";
-import { block } from "./block-matrix.js";
 import type { Conditions } from "./conditions.js";
 import type { ExitAge } from "./exit-age.js";
 import type { Kinetics } from "./kinetics.js";
-import { solveNewton } from "./newton.js";
+import { settleMixed } from "./mixed.js";
 import { type Premises, premisesOf } from "./premises.js";
 
 /** What one curve allows: the outflow when mixing is as late or as early as the curve admits. */
@@ -133,30 +132,6 @@ function startOf(exit: ExitAge): number {
 
 /** The mixed state that a constant escape intensity (1/s) keeps up: R(y) + intensity (y_in - y) = 0. */
 function settle(kinetics: Kinetics, fed: Float64Array, intensity: number): Float64Array | undefined {
-  const n = kinetics.size;
-  if (!(intensity > 0)) return undefined;
-  const tau = 1 / intensity;
-  const slope = new Float64Array(n * n);
   const y = fed.slice();
-  const result = solveNewton(
-    {
-      count: 1,
-      size: n,
-      memory: Float64Array.of(tau),
-      residual(at, f) {
-        kinetics.production(at, 0, f, 0);
-        for (let i = 0; i < n; i++) f[i] = fed[i] - at[i] + tau * f[i];
-        return true;
-      },
-      jacobian(at, m) {
-        kinetics.jacobian(at, 0, slope, 0);
-        const d = block(m, 0, 0);
-        for (let e = 0; e < n * n; e++) d[e] += tau * slope[e];
-        for (let i = 0; i < n; i++) d[i * n + i] -= 1;
-        return true;
-      },
-    },
-    y,
-  );
-  return result.converged ? y : undefined;
+  return intensity > 0 && settleMixed(kinetics, fed, 1 / intensity, y) ? y : undefined;
 }

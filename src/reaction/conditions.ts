@@ -2,8 +2,7 @@ import type { Plant } from "../compile/plant.js";
 import type { Chemistry } from "../model/chemistry.js";
 import type { Duty } from "../model/duty.js";
 import { type Dimension, dimensions } from "../units/dimension.js";
-import type { Reactions } from "./group.js";
-import { bindKinetics } from "./kinetics.js";
+import { bindKinetics, type Reactions } from "./kinetics.js";
 
 /** Values to use in place of a duty's, SI, by name: `k1`, `feed.A`, `temperature`. Unknown names have no effect. */
 export type DutySettings = Readonly<Record<string, number>>;

@@ -1,14 +1,8 @@
 import { Part, type Plant } from "../compile/plant.js";
 import { type BlockMatrix, block, blockMatrix, solveBlocks } from "./block-matrix.js";
-import type { Kinetics } from "./kinetics.js";
+import { bodyAt } from "./bodies.js";
+import type { Reactions } from "./kinetics.js";
 import type { BlockSystem } from "./newton.js";
-import { passTube } from "./tube.js";
-
-/** What reacts where: mixed cells limit what runs out, tubes cut it. */
-export interface Reactions {
-  readonly cell: Kinetics;
-  readonly tube: Kinetics;
-}
 
 /** One link that ends inside a group: from node `from` of the group, or from outside it (-1). */
 interface Inlet {
@@ -19,7 +13,7 @@ interface Inlet {
 /**
  * The steady balances of nodes that feed one another: per node, in units of its inflow,
  *   cell    mix - y + tau R(y) = 0
- *   delay   Phi(mix) - y = 0, Phi the pass through the tube
+ *   body    Phi(mix) - y = 0, Phi the way through it (tubes, and blocks)
  *   joint   mix - y = 0
  * where mix is the flow-weighted mean of what enters. y: outflow of each node, scaled, node by node.
  */
@@ -39,12 +33,15 @@ export function groupBalance(
   outside: Float64Array,
   inlets: readonly (readonly Inlet[])[],
   inflow: Float64Array,
-  { cell, tube }: Reactions,
+  reactions: Reactions,
 ): GroupBalance {
+  const { cell } = reactions;
   const n = cell.size;
   const count = nodes.length;
-  const tau = Float64Array.from(nodes, (node, k) => plant.nodes[node].volume / inflow[k]);
-  const part = Array.from(nodes, (node) => plant.nodes[node].part);
+  const { volume, part: parts } = plant.columns;
+  const tau = Float64Array.from(nodes, (node, k) => volume[node] / inflow[k]);
+  const part = Uint8Array.from(nodes, (node) => parts[node]);
+  const bodies = Array.from(nodes, (node) => bodyAt(plant, node, reactions));
   const mix = new Float64Array(n);
   const made = new Float64Array(n);
   const slope = new Float64Array(n * n);
@@ -76,7 +73,7 @@ export function groupBalance(
     residual(y, f) {
       for (let k = 0; k < count; k++) {
         enter(y, k);
-        if (part[k] === Part.Delay && !passTube(tube, tau[k], mix)) return false;
+        if (bodies[k]?.(mix) === false) return false;
         if (part[k] === Part.Cell) cell.production(y, k * n, made, 0);
         const reacting = part[k] === Part.Cell ? tau[k] : 0;
         for (let i = 0; i < n; i++) f[k * n + i] = mix[i] - y[k * n + i] + reacting * made[i];
@@ -85,9 +82,10 @@ export function groupBalance(
     },
     jacobian(y, m) {
       for (let k = 0; k < count; k++) {
-        if (part[k] === Part.Delay) {
+        const body = bodies[k];
+        if (body) {
           enter(y, k);
-          if (!passTube(tube, tau[k], mix, slope)) return false;
+          if (!body(mix, slope)) return false;
           see(m, k, slope);
         } else see(m, k);
         const d = minusOne(m, k);

@@ -12,10 +12,18 @@ export interface Kinetics {
   readonly endures: boolean;
   /** Concentration (SI) of y = 1, per species. */
   readonly scale: Float64Array;
+  /** What one unit of each reaction makes of each species, scaled. */
+  readonly numbers: readonly Float64Array[];
   /** Writes what reaction makes per second, scaled, at y[at ...] into out[to ...]. */
   production(y: ArrayLike<number>, at: number, out: Float64Array, to: number): void;
   /** Writes d production_i / d y_j at y[at ...] into out[to + i * size + j]. */
   jacobian(y: ArrayLike<number>, at: number, out: Float64Array, to: number): void;
+}
+
+/** What reacts where: mixed cells limit what runs out, tubes cut it. */
+export interface Reactions {
+  readonly cell: Kinetics;
+  readonly tube: Kinetics;
 }
 
 /**
@@ -67,6 +75,7 @@ export function bindKinetics(
     size: n,
     endures: reactions.some(({ persists }) => persists.includes(1)),
     scale,
+    numbers: reactions.map(({ numbers }) => numbers.map((x, i) => x / scale[i])),
     production(y, at, out, to) {
       load(y, at, 0);
       for (let i = 0; i < n; i++) out[to + i] = 0;

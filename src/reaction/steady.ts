@@ -2,10 +2,11 @@ import { requireCarried } from "../compile/carried.js";
 import { Part, type Plant } from "../compile/plant.js";
 import type { Chemistry } from "../model/chemistry.js";
 import type { Duty } from "../model/duty.js";
+import { bodyAt } from "./bodies.js";
 import { type Conditions, conditionsOf, type DutySettings } from "./conditions.js";
+import { conservedBy, imbalance } from "./conserved.js";
 import { groupBalance } from "./group.js";
 import { solveNewton } from "./newton.js";
-import { passTube } from "./tube.js";
 
 /** Concentrations everywhere in a plant that has settled. SI; species by their index in `species`. */
 export interface SteadyState {
@@ -25,6 +26,8 @@ export interface SteadyState {
   readonly made: Float64Array;
   /** (fed + made - left) as a share of the larger of fed and left; 0 is a closed balance. */
   readonly closure: Float64Array;
+  /** How far sums that no reaction changes (elements, say) differ between fed and left, the largest, as a share. */
+  readonly conserved: number;
 }
 
 /** What crosses the boundary of the plant at one place. */
@@ -102,14 +105,12 @@ class Walk {
     else this.passTogether(nodes);
   }
 
-  /** A joint or a tube that does not feed itself. */
+  /** A joint or a body that does not feed itself. */
   private passAlone(node: number): void {
     const { plant, n } = this;
     const y = this.y.subarray(node * n, node * n + n);
     y.set(this.brought(node, undefined));
-    if (plant.nodes[node].part !== Part.Delay) return;
-    const tau = plant.nodes[node].volume / this.inflow[node];
-    if (!passTube(this.conditions.reactions.tube, tau, y)) this.fail(node, 0, Number.POSITIVE_INFINITY);
+    if (bodyAt(plant, node, this.conditions.reactions)?.(y) === false) this.fail(node, 0, Number.POSITIVE_INFINITY);
   }
 
   private passTogether(nodes: Int32Array): void {
@@ -193,6 +194,11 @@ function summary(plant: Plant, { species, feeds, scale, reactions }: Conditions,
     left,
     made,
     closure,
+    conserved: imbalance(
+      conservedBy(reactions.cell.numbers, n),
+      fed.map((x, i) => x / scale[i]),
+      left.map((x, i) => x / scale[i]),
+    ),
   };
 }
 

@@ -1,3 +1,4 @@
+import type { Stays } from "../compartments/stays.js";
 import { integrate } from "../numerics/integrate.js";
 import type { Kinetics } from "./kinetics.js";
 
@@ -15,32 +16,101 @@ const looks = 32;
  */
 export function passTube(kinetics: Kinetics, tau: number, y: Float64Array, sensitivity?: Float64Array): boolean {
   const n = kinetics.size;
-  let state: Float64Array = new Float64Array(sensitivity ? n + n * n : n);
-  state.set(y);
-  if (sensitivity) for (let i = 0; i < n; i++) state[n + i * n + i] = 1;
-  const rhs = sensitivity ? withSensitivity(kinetics) : plain(kinetics);
-  let from = 0;
-  // A law that does not fade with its reactant (zero order) stops short where that runs out; each can run out once.
-  for (let times = 0; times <= n; times++) {
-    const outputs = kinetics.endures
-      ? Array.from({ length: looks }, (_, k) => from + ((tau - from) * (k + 1)) / looks)
-      : [tau];
-    const { end, states, times: at } = integrate({ rhs, start: state, from, to: tau, outputs, ...tolerance });
-    if (end !== "reached") return false;
-    const passed = kinetics.endures ? states.findIndex((s) => overdrawn(s, n) >= 0) : -1;
-    if (passed < 0) {
-      const last = states[states.length - 1];
-      for (let i = 0; i < n; i++) y[i] = Math.max(last[i], 0);
-      sensitivity?.set(last.subarray(n));
-      return true;
-    }
-    const stop = backToZero(kinetics, rhs, states[passed], at[passed]);
-    if (!stop) return false;
-    useUp(kinetics, stop.state, stop.gone, sensitivity !== undefined);
-    state = stop.state;
-    from = stop.time;
+  const parcel = new Parcel(kinetics, sensitivity !== undefined);
+  parcel.enter(y);
+  if (!parcel.stay(tau)) return false;
+  for (let i = 0; i < n; i++) y[i] = Math.max(parcel.state[i], 0);
+  sensitivity?.set(parcel.state.subarray(n, n + n * n));
+  return true;
+}
+
+/** What is still to come of a segregated body counts no more below this, scaled. */
+const nothing = 1e-17;
+
+/**
+ * Carries parcels through a body in which each stays by itself: outlet = integral of g(x) y(x) dx, g the density of stays and
+ * y(x) a parcel that reacts as in a batch; the integral is followed along with the parcel, under the same error control, and
+ * so is that of g alone, by which it is divided: what does not react passes unchanged.
+ *
+ * Arguments and result as for `passTube`; `kinetics` per unit of the mean stay.
+ * @see P.V. Danckwerts, Chem. Eng. Sci. 8 (1958) 93-102
+ */
+export function passSegregated(kinetics: Kinetics, stays: Stays, y: Float64Array, sensitivity?: Float64Array): boolean {
+  const n = kinetics.size;
+  const width = sensitivity ? n + n * n : n;
+  const parcel = new Parcel(kinetics, sensitivity !== undefined, stays);
+  parcel.enter(y);
+  const made = new Float64Array(n);
+  let rest = 1;
+  for (const mark of stays.from > 0 ? [stays.from, ...stays.marks] : stays.marks) {
+    if (!parcel.stay(mark)) return false;
+    rest = stays.washout(mark);
+    kinetics.production(parcel.state, 0, made, 0);
+    if (made.every((m) => Math.abs(m) * mark * rest < nothing)) break;
   }
-  return false;
+  const { state } = parcel;
+  const total = state[2 * width] + rest;
+  const mean = (k: number, least: number): number => (state[width + k] + rest * Math.max(state[k], least)) / total;
+  for (let i = 0; i < n; i++) y[i] = Math.max(mean(i, 0), 0);
+  if (sensitivity) for (let e = 0; e < n * n; e++) sensitivity[e] = mean(n + e, Number.NEGATIVE_INFINITY);
+  return true;
+}
+
+/**
+ * A parcel on its way. `state`: its composition y, then, where asked, S = dy/d(inlet), row-major; with stays, the integrals
+ * of g y and g S beside them, and of g.
+ */
+class Parcel {
+  state: Float64Array;
+  private readonly rhs: Rhs;
+  private at = 0;
+
+  constructor(
+    private readonly kinetics: Kinetics,
+    private readonly sensitive: boolean,
+    stays?: Stays,
+  ) {
+    const n = kinetics.size;
+    const width = sensitive ? n + n * n : n;
+    this.state = new Float64Array(stays ? 2 * width + 1 : width);
+    const own = sensitive ? withSensitivity(kinetics) : plain(kinetics);
+    this.rhs = stays ? gathering(own, stays, width) : own;
+  }
+
+  enter(y: ArrayLike<number>): void {
+    const n = this.kinetics.size;
+    this.at = 0;
+    this.state.fill(0);
+    this.state.set(y);
+    if (this.sensitive) for (let i = 0; i < n; i++) this.state[n + i * n + i] = 1;
+  }
+
+  /** Goes on until it has stayed for `end` in all; false where the integrator gave up. */
+  stay(end: number): boolean {
+    const { kinetics, rhs } = this;
+    const n = kinetics.size;
+    // A law that does not fade with its reactant (zero order) stops short where that runs out; each can run out once.
+    for (let times = 0; times <= n; times++) {
+      const from = this.at;
+      const outputs = kinetics.endures
+        ? Array.from({ length: looks }, (_, k) => from + ((end - from) * (k + 1)) / looks)
+        : [end];
+      const run = integrate({ rhs, start: this.state, from, to: end, outputs, ...tolerance });
+      if (run.end !== "reached") return false;
+      const passed = kinetics.endures ? run.states.findIndex((s) => overdrawn(s, n) >= 0) : -1;
+      if (passed < 0) {
+        this.state = run.states[run.states.length - 1];
+        this.at = end;
+        return true;
+      }
+      const stop = backToZero(kinetics, rhs, run.states[passed], run.times[passed]);
+      if (!stop) return false;
+      useUp(kinetics, stop.state, stop.gone, this.sensitive);
+      this.state = stop.state;
+      this.at = stop.time;
+    }
+    return false;
+  }
 }
 
 type Rhs = (t: number, y: Float64Array, dy: Float64Array) => void;
@@ -49,6 +119,16 @@ const plain =
   (kinetics: Kinetics): Rhs =>
   (_t, s, ds) =>
     kinetics.production(s, 0, ds, 0);
+
+/** Adds what leaves on the way: g times the first `width` components into the next, and g itself. */
+const gathering =
+  (own: Rhs, { from, density }: Stays, width: number): Rhs =>
+  (x, s, ds) => {
+    own(x, s, ds);
+    const g = x < from ? 0 : density(x);
+    for (let k = 0; k < width; k++) ds[width + k] = g * s[k];
+    ds[2 * width] = g;
+  };
 
 function withSensitivity(kinetics: Kinetics): Rhs {
   const n = kinetics.size;

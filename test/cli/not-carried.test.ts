@@ -22,8 +22,6 @@ test.each([
   [["simulate", "dispersed.yaml", "--pulse", "feed", "--engine", "ode"]],
   [["simulate", "dispersed.yaml", "--trial", "pulse.yaml", "--engine", "exact"]],
   [["simulate", "dispersed.yaml", "--step", "feed", "--verify"]],
-  [["simulate", "dispersed.yaml", "--duty", "duty.yaml"]],
-  [["study", "study.yaml"]],
 ])("%j refuses a body that it does not carry, with its place", async (args) => {
   const { status, err } = await backmix(args, { files });
   expect(err).toContain("dispersed.yaml:6:3 not-carried: 'bulk' is axial dispersion");

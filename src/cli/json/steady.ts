@@ -38,6 +38,7 @@ export function steadyJson(plant: Plant, duty: Duty, prediction: Prediction): Re
     ),
     ...(premises ? { premises } : {}),
     closure: Object.fromEntries(steady.species.map((s, i) => [s, finite(steady.closure[i])])),
+    conserved: finite(steady.conserved),
     residual: finite(steady.residual),
     converged: steady.converged,
     ...(steady.worst ? { worst: steady.worst } : {}),

@@ -45,7 +45,7 @@ export function steadyText(plant: Plant, duty: Duty, prediction: Prediction): st
       ...at,
       [
         "balances",
-        `every species closes to ${formatNumber(worst, 1)}, every node to ${formatNumber(steady.residual, 1)}`,
+        `every species closes to ${formatNumber(worst, 1)}, what no reaction changes to ${formatNumber(steady.conserved, 1)}, every node to ${formatNumber(steady.residual, 1)}`,
       ],
     ]),
   );

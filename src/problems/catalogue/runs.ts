@@ -4,13 +4,10 @@ import { entry } from "../problem.js";
 export const runEntries = {
   "not-carried": entry({
     severity: "error",
-    says: (d: { name: string; is: string; reacts: boolean }) =>
-      `'${d.name}' is ${d.is}, which ${d.reacts ? "this version cannot yet react" : "only the laplace engine can follow in time"}`,
-    fix: (d) =>
-      d.reacts
-        ? "use tanks in series (`kind: stirred` with `repeat` and `backflow`) or plain tubes for it until then; tracer curves, fits, mean times and the transfer function take it as it is"
-        : "leave the choice of the engine to the tool, or ask for `--engine laplace`, without `--verify`",
-    example: { name: "core", is: "axial dispersion", reacts: true },
+    says: (d: { name: string; is: string }) =>
+      `'${d.name}' is ${d.is}, which only the laplace engine can follow in time`,
+    fix: "leave the choice of the engine to the tool, or ask for `--engine laplace`, without `--verify`",
+    example: { name: "core", is: "axial dispersion" },
   }),
   "unknown-free": entry({
     severity: "error",
