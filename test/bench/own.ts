@@ -1,0 +1,11 @@
+// One of our own runs in a process of its own, as the peers have: `own CASE ARGUMENTS…` prints one JSON document.
+import { log } from "./own/log.js";
+import { p1 } from "./own/p1.js";
+import { p2 } from "./own/p2.js";
+import { p3 } from "./own/p3.js";
+import { p4 } from "./own/p4.js";
+
+const jobs: Readonly<Record<string, (args: string[]) => Record<string, unknown>>> = { p1, log, p2, p3, p4 };
+const [name, ...args] = process.argv.slice(2);
+const printed = jobs[name](args);
+console.log(JSON.stringify({ ...printed, peak_kB: process.resourceUsage().maxRSS }));
