@@ -14,12 +14,26 @@ import { spellOut } from "./spell.js";
 /**
  * Balances a network and spells it out in primitive nodes.
  * @param settings values to use in place of the file's, SI, by name (`bypass`, `feed.flow`)
+ * @param plan     of the flows, where it is known
  * @returns no plant, and the reasons as problems, where values make a volume or flow impossible; never throws
  */
-export function compile(network: Network, settings: Settings = {}): { plant: Plant | undefined; problems: Problem[] } {
-  const { env, volumes, flows, problems } = balance(network, settings);
+export function compile(
+  network: Network,
+  settings: Settings = {},
+  plan?: FlowPlan,
+): { plant: Plant | undefined; problems: Problem[] } {
+  const { env, volumes, flows, problems } = balance(network, settings, plan);
   if (!flows || problems.length > 0) return { plant: undefined, problems };
   return { plant: plantOf(network, env, volumes, flows), problems };
+}
+
+/** `compile` for many settings of one network: what does not depend on values is found once. */
+export function compiler(network: Network): {
+  compile: (settings: Settings) => ReturnType<typeof compile>;
+  plan: FlowPlan;
+} {
+  const plan = flowPlan(network);
+  return { compile: (settings) => compile(network, settings, plan), plan };
 }
 
 /** Tells of many settings what makes a network impossible there; nothing where `compile` would give a plant. */
@@ -50,6 +64,8 @@ function plantOf(network: Network, env: Float64Array, volumes: Float64Array, flo
   let active = 0;
   for (let i = 0; i < nodes.size; i++) if (inflow[i] > 0) active += nodes.volume[i];
   let made: Plant["nodes"] | undefined;
+  let groups: Plant["groups"] | undefined;
+  let streams: PlantStream[] | undefined;
   const offset = network.feeds.length + network.compartments.length;
   return {
     network,
@@ -77,8 +93,14 @@ function plantOf(network: Network, env: Float64Array, volumes: Float64Array, flo
     })),
     entry: spelled.entry,
     exit: spelled.exit,
-    groups: stronglyConnected({ size: nodes.size, from, to }),
-    streams: streamsOf(network, env, flows),
+    get groups() {
+      groups ??= stronglyConnected({ size: nodes.size, from, to });
+      return groups;
+    },
+    get streams() {
+      streams ??= streamsOf(network, env, flows);
+      return streams;
+    },
     // Rounding is no dead volume.
     volume: { total, active, dead: total - active > 1e-12 * total ? total - active : 0 },
   };

@@ -44,7 +44,7 @@ export function flowPlan(network: Network): FlowPlan {
 }
 
 /** Every stream as a linear function of its source's through-flow: share * through + fixed. */
-interface Branches {
+export interface Branches {
   readonly share: Float64Array;
   readonly fixed: Float64Array;
 }
@@ -131,7 +131,7 @@ function splitsPossible(network: Network, env: Float64Array, report: Report, say
   return good;
 }
 
-function branchesOf(network: Network, plan: FlowPlan, env: Float64Array): Branches {
+export function branchesOf(network: Network, plan: FlowPlan, env: Float64Array): Branches {
   const share = new Float64Array(plan.streams.length);
   const fixed = new Float64Array(plan.streams.length);
   let first = 0;
@@ -157,8 +157,8 @@ function branchesOf(network: Network, plan: FlowPlan, env: Float64Array): Branch
   return { share, fixed };
 }
 
-/** Through-flows, or the places of a circle whose flow cannot be told. */
-function solveThrough(
+/** Through-flows for what is supplied to each place, or the places of a circle whose flow cannot be told. */
+export function solveThrough(
   { places, from, groups, into }: FlowPlan,
   { share, fixed }: Branches,
   supply: Float64Array,

@@ -2,6 +2,7 @@ import { evaluateNames } from "../compile/evaluate.js";
 import type { Named, Network } from "../model/network.js";
 import type { Injection, Reading, Trial } from "../model/trial.js";
 import type { Env, Value } from "../model/value.js";
+import type { Direction } from "./forward.js";
 import { shifted } from "./settings.js";
 
 /** The declared facts of all trials, as a run may move them within their `±`. */
@@ -17,7 +18,13 @@ export interface Held {
   readonly sd: number;
   /** Moves the fact by `by` (SI) from what the file says. */
   move(facts: Facts, by: number): void;
+  /** What that moves in a trial, by its index, per SI; nothing where it moves something in another trial only. */
+  direction(trial: number): Direction | undefined;
+  /** The name that it shifts, where it is one of the network. */
+  readonly name?: string;
 }
+
+const noNames: ReadonlyMap<string, number> = new Map();
 
 /** Doses, flows of the day, feed flows, sample lines and parameters that stay at their value, each with a `±`. */
 export function heldFacts(network: Network, trials: readonly Trial[], free: ReadonlySet<string>, env: Env): Held[] {
@@ -33,7 +40,10 @@ export function uncertainConstants(network: Network, trials: readonly Trial[], e
   const ofNetwork = network.names.filter((n) => n.role === "constant").flatMap((n) => heldName(network, n, env));
   const ofDays = trials.flatMap((trial, k) =>
     [...trial.with].flatMap(([name, value]) =>
-      heldValue(value, k, `${name} of '${trial.title}'`, env, (t, v) => ({ ...t, with: new Map(t.with).set(name, v) })),
+      heldValue(value, k, `${name} of '${trial.title}'`, env, { day: new Map([[name, 1]]) }, (t, v) => ({
+        ...t,
+        with: new Map(t.with).set(name, v),
+      })),
     ),
   );
   return [...ofNetwork, ...ofDays];
@@ -44,7 +54,8 @@ function heldName(network: Network, named: Named, env: Env): Held[] {
   const move = (facts: Facts, by: number): void => {
     facts.values[named.name] = evaluateNames(network, facts.values)[named.slot] + by;
   };
-  return sd > 0 ? [{ says: named.name, sd, move }] : [];
+  const direction = { names: new Map([[named.name, 1]]) };
+  return sd > 0 ? [{ says: named.name, sd, move, direction: () => direction, name: named.name }] : [];
 }
 
 function heldValue(
@@ -52,6 +63,7 @@ function heldValue(
   trial: number,
   says: string,
   env: Env,
+  moves: Omit<Direction, "names">,
   change: (trial: Trial, moved: Value) => Trial,
 ): Held[] {
   const sd = value?.sd?.(env) ?? 0;
@@ -59,13 +71,17 @@ function heldValue(
   const move = (facts: Facts, by: number): void => {
     facts.trials[trial] = change(facts.trials[trial], shifted(value, by));
   };
-  return [{ says, sd, move }];
+  const direction = { names: noNames, ...moves };
+  return [{ says, sd, move, direction: (t) => (t === trial ? direction : undefined) }];
 }
 
 function heldOfTrial(trial: Trial, k: number, env: Env): Held[] {
   const of = `of '${trial.title}'`;
   const flows = [...trial.flows].flatMap(([feed, flow]) =>
-    heldValue(flow, k, `flow of ${feed} ${of}`, env, (t, v) => ({ ...t, flows: new Map(t.flows).set(feed, v) })),
+    heldValue(flow, k, `flow of ${feed} ${of}`, env, { day: new Map([[`${feed}.flow`, 1]]) }, (t, v) => ({
+      ...t,
+      flows: new Map(t.flows).set(feed, v),
+    })),
   );
   const doses = trial.injections.flatMap(({ form }, i) => {
     if (form.is === "signal") return [];
@@ -73,9 +89,10 @@ function heldOfTrial(trial: Trial, k: number, env: Env): Held[] {
       ...t,
       injections: t.injections.map((one, j) => (j === i ? { ...one, form: changed } : one)),
     });
+    const moves = { dose: { injection: i, slope: 1 } };
     return form.is === "pulse"
-      ? heldValue(form.amount, k, `dose ${of}`, env, (t, amount) => set(t, { ...form, amount }))
-      : heldValue(form.level, k, `step ${of}`, env, (t, level) => set(t, { ...form, level }));
+      ? heldValue(form.amount, k, `dose ${of}`, env, moves, (t, amount) => set(t, { ...form, amount }))
+      : heldValue(form.level, k, `step ${of}`, env, moves, (t, level) => set(t, { ...form, level }));
   });
   const lines = trial.readings.flatMap(({ line, at }, i) => {
     const set = (t: Trial, part: Partial<Reading["line"]>): Trial => ({
@@ -83,8 +100,17 @@ function heldOfTrial(trial: Trial, k: number, env: Env): Held[] {
       readings: t.readings.map((one, j) => (j === i ? { ...one, line: { ...one.line, ...part } } : one)),
     });
     return [
-      ...heldValue(line.delay, k, `line delay at ${at} ${of}`, env, (t, delay) => set(t, { delay })),
-      ...heldValue(line.lag, k, `line lag at ${at} ${of}`, env, (t, lag) => set(t, { lag })),
+      ...heldValue(
+        line.delay,
+        k,
+        `line delay at ${at} ${of}`,
+        env,
+        { line: { reading: i, delay: 1, lag: 0 } },
+        (t, delay) => set(t, { delay }),
+      ),
+      ...heldValue(line.lag, k, `line lag at ${at} ${of}`, env, { line: { reading: i, delay: 0, lag: 1 } }, (t, lag) =>
+        set(t, { lag }),
+      ),
     ];
   });
   return [...flows, ...doses, ...lines];

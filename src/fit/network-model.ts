@@ -1,28 +1,71 @@
-import { compile } from "../compile/compile.js";
+import { compiler } from "../compile/compile.js";
+import { evaluateNames } from "../compile/evaluate.js";
 import { Part, type Plant, type Settings } from "../compile/plant.js";
+import { type PlantSlope, PlantSlopes } from "../compile/plant-slopes.js";
+import { ValueSlopes } from "../compile/value-slopes.js";
 import type { Network } from "../model/network.js";
 import type { Trial } from "../model/trial.js";
 import { trialResponse } from "../simulate/trial.js";
-import type { ForwardModel } from "./forward.js";
+import { hasSlopes, type Move, trialSlopes } from "../simulate/trial-slopes.js";
+import type { At, Direction, ForwardModel } from "./forward.js";
 import { settingsOfDay } from "./settings.js";
 
-/** The exact tracer response of a network as a forward model. It keeps the plant of the last values asked for. */
+/** Plants that are kept: those of a point are asked for again, once for every trial. */
+const mostKept = 8;
+
+/** The exact tracer response of a network as a forward model, with derivatives. It keeps the plants of the last values asked for. */
 export function networkModel(network: Network): ForwardModel {
-  let lastSettings: Settings | undefined;
-  let last: Plant | undefined;
+  const { compile, plan } = compiler(network);
+  const derived = new ValueSlopes(network);
+  const kept: { trial: Trial; values: Settings; plant: Plant | undefined }[] = [];
   const plantFor = (trial: Trial, values: Settings): Plant | undefined => {
-    const settings = settingsOfDay(network, trial, values);
-    if (settings !== lastSettings) {
-      lastSettings = settings;
-      const { plant } = compile(network, settings);
-      last = plant && network.requires.every((r) => r.slack(plant.env) >= 0) ? plant : undefined;
-    }
-    return last;
+    const known = kept.find((k) => k.values === values && k.trial === trial);
+    if (known) return known.plant;
+    const { plant: any } = compile(settingsOfDay(network, trial, values));
+    const plant = any && network.requires.every((r) => r.slack(any.env) >= 0) ? any : undefined;
+    if (kept.length === mostKept) kept.shift();
+    kept.push({ trial, values, plant });
+    return plant;
+  };
+  /** How the plant of the day moves with the names. */
+  const plantMoves = (trial: Trial, { values, shifted }: At, plant: Plant, directions: readonly Direction[]) => {
+    const isSet = (name: string): boolean => name in values && !shifted.has(name);
+    const env = trial.flows.size + trial.with.size > 0 ? evaluateNames(network, values) : plant.env;
+    const onDay = [...[...trial.flows].map(([feed, v]) => [`${feed}.flow`, v] as const), ...trial.with];
+    const set = new Set(onDay.map(([name]) => name));
+    const plants = new PlantSlopes(network, plant, plan, derived);
+    return directions.map(({ names, day }): { plant: PlantSlope | undefined } | undefined => {
+      if (names.size === 0 && !day) return { plant: undefined };
+      const before = derived.names(env, isSet, names);
+      const moved = new Map(names);
+      for (const [name, value] of onDay) moved.set(name, derived.along(value, env, before) + (day?.get(name) ?? 0));
+      const slope = set.size > 0 ? derived.names(plant.env, (n) => isSet(n) || set.has(n), moved) : before;
+      const along = plants.along(slope);
+      return along && { plant: along };
+    });
   };
   return {
-    respond: (trial, values, wanted) => {
+    respond(trial, values, wanted) {
       const plant = plantFor(trial, values);
-      return plant && trialResponse(plant, trial, wanted);
+      if (!plant) return undefined;
+      return hasSlopes(plant) ? trialSlopes(plant, trial, wanted, []).curves : trialResponse(plant, trial, wanted);
+    },
+    slopes(trial, at, wanted, directions) {
+      const plant = plantFor(trial, at.values);
+      if (!plant || !hasSlopes(plant)) return undefined;
+      const known: number[] = [];
+      const moves = plantMoves(trial, at, plant, directions).flatMap((m, d): Move[] => {
+        if (!m) return [];
+        known.push(d);
+        const { dose, line } = directions[d];
+        return [{ ...(m.plant ? { plant: m.plant } : {}), ...(dose ? { dose } : {}), ...(line ? { line } : {}) }];
+      });
+      const response = trialSlopes(plant, trial, wanted, moves);
+      const slopes: (readonly Float64Array[] | undefined)[] = directions.map(() => undefined);
+      known.forEach((d, k) => {
+        slopes[d] = response.slopes[k];
+      });
+      return { curves: response.curves, slopes };
     },
     delays: (trial, values) => {
       const plant = plantFor(trial, values);

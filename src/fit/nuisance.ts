@@ -17,6 +17,12 @@ export interface Projector {
   readonly terms: number;
   /** Writes weighted residuals (measured - fitted) of `model` (SI) to `out` from the block's place on. */
   project(model: Float64Array, out: Float64Array): LinearTerms;
+  /**
+   * Derivatives of the residuals of `project` by what moves `model`.
+   * @param slopes  how `model` moves by coordinate, SI; undefined where it does not
+   * @param out     flat, a row of derivatives for each residual of the whole list; the block's rows are written
+   */
+  slopes(model: Float64Array, slopes: readonly (Float64Array | undefined)[], out: Float64Array): void;
   /** Columns of the weighted linear terms beside `model`: scale, offset, drift as far as free; SI per second for drift. */
   columns(model: Float64Array): Float64Array[];
 }
@@ -61,7 +67,27 @@ export function projectorFor(block: Block, weight: Float64Array): Projector {
     const list = fixed.map((c, k) => (k === 1 ? c.map((x) => x * span) : c));
     return free ? [column(n, (i) => weight[from + i] * model[i]), ...list] : list;
   };
-  return { terms: fixed.length + (free ? 1 : 0), project, columns };
+  const moved = new Float64Array(n);
+  const slopes = (model: Float64Array, of: readonly (Float64Array | undefined)[], out: Float64Array): void => {
+    let scale = 1;
+    let norm = 0;
+    if (free) {
+      for (let i = 0; i < n; i++) curve[i] = weight[from + i] * model[i];
+      removeTwice(curve, basis);
+      norm = dot(curve, curve);
+      scale = norm > 0 ? dot(curve, targetLeft) / norm : 0;
+    }
+    for (let j = 0; j < of.length; j++) {
+      const slope = of[j];
+      if (!slope) continue;
+      for (let i = 0; i < n; i++) moved[i] = weight[from + i] * slope[i];
+      removeTwice(moved, basis);
+      // d(y - s c) = -s dc - ds c, s = c.y / c.c
+      const grows = norm > 0 ? (dot(moved, targetLeft) - 2 * scale * dot(curve, moved)) / norm : 0;
+      for (let i = 0; i < n; i++) out[(from + i) * of.length + j] = -scale * moved[i] - (free ? grows * curve[i] : 0);
+    }
+  };
+  return { terms: fixed.length + (free ? 1 : 0), project, slopes, columns };
 }
 
 const column = (n: number, at: (i: number) => number): Float64Array =>

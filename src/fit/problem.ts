@@ -1,8 +1,10 @@
+import type { Facts } from "./held.js";
 import { type LinearTerms, type Projector, projectorFor } from "./nuisance.js";
-import { curvesAt, type Setup } from "./setup.js";
+import { curvesOf, factsAt, type Setup } from "./setup.js";
 
 /** What one point of the search gives. */
 export interface Evaluation {
+  readonly facts: Facts;
   /** Curves of the blocks, SI, and the best linear terms beside them. */
   readonly curves: readonly Float64Array[];
   readonly terms: readonly LinearTerms[];
@@ -46,8 +48,9 @@ export function problemWith(setup: Setup, weight: Float64Array, priors: readonly
   const evaluate = (x: Float64Array): Evaluation | undefined => {
     if (lastPoint && samePoint(lastPoint, x)) return last;
     lastPoint = Float64Array.from(x);
-    const curves = curvesAt(setup, x);
-    last = curves && withTerms(setup, projectors, priors, curves, x);
+    const facts = factsAt(setup, x);
+    const curves = curvesOf(setup, facts);
+    last = curves && withTerms(setup, projectors, priors, facts, curves, x);
     return last;
   };
   return { setup, weight, projectors, priors, linear, evaluate };
@@ -57,6 +60,7 @@ function withTerms(
   setup: Setup,
   projectors: readonly Projector[],
   priors: readonly Prior[],
+  facts: Facts,
   curves: readonly Float64Array[],
   x: Float64Array,
 ): Evaluation | undefined {
@@ -70,7 +74,7 @@ function withTerms(
     residuals[setup.observations + j] = r;
     ofAll += r * r;
   }
-  return Number.isFinite(ofAll) ? { curves, terms, residuals, ofData, ofAll } : undefined;
+  return Number.isFinite(ofAll) ? { facts, curves, terms, residuals, ofData, ofAll } : undefined;
 }
 
 function samePoint(a: Float64Array, b: Float64Array): boolean {

@@ -1,4 +1,5 @@
 import { leastSquares } from "../numerics/least-squares.js";
+import { projectedJacobian } from "./jacobian.js";
 import type { Problem } from "./problem.js";
 import { delayWalks, drawnStarts, type StartPlan, startCounts, walkStarts, withCoordinate } from "./starts.js";
 
@@ -103,6 +104,10 @@ export function descend(problem: Problem, from: Float64Array, effort: Effort, wa
   const missing = new Float64Array(problem.setup.observations + problem.priors.length).fill(Number.NaN);
   const run = leastSquares({
     residuals: (x) => problem.evaluate(x)?.residuals ?? missing,
+    jacobian: (x) => {
+      const at = problem.evaluate(x);
+      return at ? projectedJacobian(problem, x, at) : [];
+    },
     allowed: (x) => problem.evaluate(x) !== undefined,
     start: from,
     scale: new Float64Array(from.length).fill(1),

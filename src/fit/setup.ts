@@ -1,7 +1,7 @@
 import type { Network } from "../model/network.js";
 import type { Trial } from "../model/trial.js";
 import type { Coordinate } from "./coordinates.js";
-import type { ForwardModel, WantedTimes } from "./forward.js";
+import type { Direction, ForwardModel, WantedTimes } from "./forward.js";
 import type { Facts, Held } from "./held.js";
 import type { Block } from "./observations.js";
 
@@ -42,9 +42,14 @@ export function curvesAt(
   x: ArrayLike<number>,
   alter?: (facts: Facts) => void,
 ): Float64Array[] | undefined {
-  setup.cost.evaluations++;
   const facts = factsAt(setup, x);
   alter?.(facts);
+  return curvesOf(setup, facts);
+}
+
+/** The same for facts that are known already. */
+export function curvesOf(setup: Setup, facts: Facts): Float64Array[] | undefined {
+  setup.cost.evaluations++;
   const curves: Float64Array[] = [];
   for (const [k, trial] of facts.trials.entries()) {
     const blocks = setup.blocks.filter((b) => b.trial === k);
@@ -54,6 +59,42 @@ export function curvesAt(
     for (const b of blocks) curves.push(answer[b.reading]);
   }
   return curves;
+}
+
+/**
+ * Exact derivatives of the curves of every block, by direction: of each block SI per unit of the direction.
+ * @param directions  by direction and trial; undefined where it moves nothing in a trial
+ * @returns a direction that has no derivative somewhere is left out
+ */
+export function slopesOf(
+  setup: Setup,
+  facts: Facts,
+  directions: readonly ((trial: number) => Direction | undefined)[],
+): (readonly Float64Array[] | undefined)[] {
+  const slopes: (Float64Array[] | undefined)[] = directions.map(() => []);
+  const shifted = new Set(setup.held.flatMap((h) => h.name ?? []));
+  for (const [k, trial] of facts.trials.entries()) {
+    const blocks = setup.blocks.filter((b) => b.trial === k);
+    if (blocks.length === 0) continue;
+    const asked = directions.flatMap((of, p) => {
+      const direction = slopes[p] && of(k);
+      return direction ? [{ p, direction }] : [];
+    });
+    const at = { values: facts.values, shifted };
+    const answer = setup.model.slopes?.(
+      trial,
+      at,
+      wantedTimes(trial, blocks),
+      asked.map((a) => a.direction),
+    );
+    for (const [p, list] of slopes.entries()) {
+      const place = asked.findIndex((a) => a.p === p);
+      const found = place < 0 ? undefined : answer?.slopes[place];
+      if (place >= 0 && !found) slopes[p] = undefined;
+      else for (const b of blocks) list?.push((found?.[b.reading] as Float64Array) ?? new Float64Array(b.time.length));
+    }
+  }
+  return slopes;
 }
 
 /** Parameters and declared facts at a point of the search. */

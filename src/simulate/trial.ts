@@ -32,7 +32,10 @@ export function trialResponse(
       const delay = reading.line.delay?.of(plant.env) ?? 0;
       const lag = reading.line.lag?.of(plant.env) ?? 0;
       // A vessel that starts in balance with `from` reads this before anything changes.
-      if (before !== 0) sums[i].fill((before * steady[node].share) / plant.nodes[node].inflow);
+      if (before !== 0) {
+        const level = (before * steady[node].share) / plant.nodes[node].inflow;
+        for (let k = 0; k < sums[i].length; k++) sums[i][k] += level;
+      }
       const times = wanted[i].time.map((t) => t - injection.start - delay);
       return { node, times, lag, integral: false };
     });

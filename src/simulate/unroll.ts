@@ -1,10 +1,13 @@
 import { requireCarried } from "../compile/carried.js";
 import { Part, type Plant } from "../compile/plant.js";
+import type { PlantSlope } from "../compile/plant-slopes.js";
 import { type Adjacency, adjacency } from "../numerics/graph.js";
 import { factor, solve } from "../numerics/lu.js";
 import { sparseRows } from "../numerics/sparse.js";
+import { add, type Copy, type Draft, type UnrollPlan } from "./drafts.js";
 import { type Blend, jointBlends } from "./joints.js";
 import type { LinearSystem, Passage } from "./linear-system.js";
+import { type UnrolledSlope, unrolledSlope } from "./unroll-slopes.js";
 
 /**
  * A plant with its tubes unrolled: tracer that has passed tubes of total delay d lives in a copy of the network with a
@@ -17,21 +20,13 @@ export interface Unrolled {
   /** Concentration entering a tube. */
   inlet(node: number): Passage[];
   system(): LinearSystem;
+  /** Balances of the states as rows, column -> 1/s; they are the system's own, not to be changed. */
+  readonly rows: readonly ReadonlyMap<number, number>[];
+  readonly input: readonly number[];
+  /** How all of it moves with the plant; undefined where that has no derivative. */
+  slope(plant: PlantSlope): UnrolledSlope | undefined;
   /** True where passes were given up because there were too many. */
   readonly truncated: boolean;
-}
-
-interface Draft {
-  weights: Map<number, number>;
-  direct: number;
-}
-
-interface Copy {
-  readonly delay: number;
-  /** Tube outlets through which tracer comes into this copy. */
-  readonly seeds: Map<number, Draft>;
-  readonly outflow: Map<number, Draft>;
-  readonly inlets: Map<number, Draft>;
 }
 
 const nothing: Draft = { weights: new Map(), direct: 0 };
@@ -51,6 +46,9 @@ export function unroll(plant: Plant, node: number, horizon: number): Unrolled {
     truncated,
     outflow: (i) => builder.copies.flatMap((c) => passage(c.delay, c.outflow.get(i) ?? c.seeds.get(i))),
     inlet: (i) => builder.copies.flatMap((c) => passage(c.delay, c.inlets.get(i))),
+    rows: builder.rows,
+    input: builder.input,
+    slope: (moved) => unrolledSlope(builder.plan, moved),
     system: () => ({ rates: sparseRows(builder.rows), input: Float64Array.from(builder.input) }),
   };
 }
@@ -82,6 +80,12 @@ class Unroller {
     this.loops = hasTubeInLoop(plant);
   }
 
+  /** What was decided, for whoever follows the same way again. */
+  get plan(): UnrollPlan {
+    const { plant, entry, blends, into, copies } = this;
+    return { plant, entry, blends, into, copies };
+  }
+
   build(horizon: number): boolean {
     const waiting: { delay: number; seeds: Map<number, Draft> }[] = [{ delay: 0, seeds: new Map() }];
     while (waiting.length > 0) {
@@ -96,7 +100,12 @@ class Unroller {
           const same = waiting[at].seeds.get(tube);
           if (same) add(same, draft, 1);
           else waiting[at].seeds.set(tube, draft);
-        } else waiting.splice(at < 0 ? waiting.length : at, 0, { delay, seeds: new Map([[tube, draft]]) });
+          copy.goes.set(tube, waiting[at].seeds);
+        } else {
+          const seeds = new Map([[tube, draft]]);
+          waiting.splice(at < 0 ? waiting.length : at, 0, { delay, seeds });
+          copy.goes.set(tube, seeds);
+        }
       }
       if (this.rows.length > mostStates || this.copies.length > 10_000) return waiting.length > 0;
     }
@@ -153,7 +162,7 @@ class Unroller {
       add(inlet, { weights: inward.weights, direct: 0 }, 1 / nodes[i].inflow);
       inlets.set(i, inlet);
     }
-    return { delay, seeds, outflow, inlets };
+    return { delay, seeds, outflow, inlets, reached, goes: new Map() };
   }
 
   /** Nodes that tracer gets to without passing another tube; tubes are reached at their inlet. */
@@ -204,12 +213,6 @@ class Unroller {
     for (const [s, w] of inlet.weights) sum += w * this.dose[s];
     return sum * this.plant.nodes[tube].inflow;
   }
-}
-
-function add(sum: Draft, part: Draft, factor: number): void {
-  if (factor === 0) return;
-  sum.direct += factor * part.direct;
-  for (const [s, w] of part.weights) sum.weights.set(s, (sum.weights.get(s) ?? 0) + factor * w);
 }
 
 function hasTubeInLoop(plant: Plant): boolean {

@@ -1,0 +1,149 @@
+import type { Block } from "../compartments/block.js";
+import type { KindValues, NodeMaker } from "../compartments/kind.js";
+import type { Compartment, Network } from "../model/network.js";
+import { kindValues } from "./evaluate.js";
+import { FlowSlopes } from "./flow-slopes.js";
+import type { FlowPlan } from "./flows.js";
+import { Part, type Plant } from "./plant.js";
+import type { ValueSlopes } from "./value-slopes.js";
+
+/** How a plant changes along a direction, per unit of t; nodes and links as in the plant. */
+export interface PlantSlope {
+  /** Of all names, SI, one slot each. */
+  readonly env: Float64Array;
+  /** m3 and m3/s, by node. */
+  readonly volume: Float64Array;
+  readonly inflow: Float64Array;
+  /** m3/s, by link. */
+  readonly flow: Float64Array;
+}
+
+/** Nodes and links that a compartment spells itself out in. */
+interface Spelled {
+  readonly part: number[];
+  readonly volume: number[];
+  readonly flow: number[];
+}
+
+/**
+ * Derivatives of a plant at one set of values, without compiling it again: values by their derivatives, flows by the same
+ * linear system. What a kind makes of its values is at most bilinear (volumes shared over members, flows in proportion to the
+ * through-flow), so that a wide central difference of its `spell` is exact but for rounding.
+ */
+export class PlantSlopes {
+  private readonly flows: FlowSlopes;
+  private readonly given: readonly KindValues[];
+  private readonly spelled: readonly Spelled[];
+
+  constructor(
+    private readonly network: Network,
+    private readonly plant: Plant,
+    plan: FlowPlan,
+    private readonly values: ValueSlopes,
+  ) {
+    this.flows = new FlowSlopes(network, plan, plant.env, values);
+    this.given = network.compartments.map((c) => kindValues(c, plant.env));
+    this.spelled = network.compartments.map((c, i) => spell(c, this.given[i], this.through(i)));
+  }
+
+  /**
+   * @param env  how the names move, SI per unit of t, one slot each
+   * @returns undefined where the plant has no derivative: a volume or flow that is just 0 begins to be there
+   */
+  along(env: Float64Array): PlantSlope | undefined {
+    const { network, plant, spelled } = this;
+    const flows = this.flows.along(env);
+    if (!flows) return undefined;
+    const volume = new Float64Array(plant.columns.size);
+    const flow = new Float64Array(plant.flow.length);
+    let node = network.feeds.length;
+    let link = 0;
+    for (const [i, c] of network.compartments.entries()) {
+      const moved = this.spelledAlong(c, i, env, flows.through[network.feeds.length + i]);
+      if (!moved) return undefined;
+      volume.set(moved.volume, node);
+      flow.set(moved.flow, link);
+      node += spelled[i].volume.length;
+      link += spelled[i].flow.length;
+    }
+    flow.set(flows.streams, link);
+    link += flows.streams.length;
+    for (const c of network.compartments) {
+      for (const e of c.exchanges) {
+        const d = this.values.along(e.flow, plant.env, env);
+        flow[link++] = d;
+        flow[link++] = d;
+      }
+    }
+    if (link !== flow.length) return undefined;
+    const inflow = new Float64Array(volume.length);
+    for (let k = 0; k < link; k++) inflow[plant.to[k]] += flow[k];
+    network.feeds.forEach((_, i) => {
+      inflow[i] += flows.through[i];
+    });
+    return { env, volume, inflow, flow };
+  }
+
+  private through(compartment: number): number {
+    return this.flows.throughOf(this.network.feeds.length + compartment);
+  }
+
+  private spelledAlong(c: Compartment, i: number, env: Float64Array, through: number): Spelled | undefined {
+    const here = this.spelled[i];
+    if (here.volume.length + here.flow.length === 0) return here;
+    const given = this.given[i];
+    const slopes: Record<string, number> = {};
+    // As far as nothing changes its sign.
+    let h = through === 0 ? Number.POSITIVE_INFINITY : Math.abs(this.through(i) / through) / 8;
+    for (const key in c.values) {
+      slopes[key] = this.values.along(c.values[key], this.plant.env, env);
+      if (slopes[key] !== 0) h = Math.min(h, Math.abs(given.values[key] / slopes[key]) / 8);
+    }
+    if (h === Number.POSITIVE_INFINITY)
+      return { ...here, volume: here.volume.map(() => 0), flow: here.flow.map(() => 0) };
+    if (!(h > 0)) return undefined;
+    const at = (by: number): Spelled => {
+      const values: Record<string, number> = {};
+      for (const key in slopes) values[key] = given.values[key] + by * slopes[key];
+      return spell(c, { ...given, values }, this.through(i) + by * through);
+    };
+    const [up, down] = [at(h), at(-h)];
+    const same = (s: Spelled): boolean =>
+      s.part.length === here.part.length &&
+      s.part.every((p, k) => p === here.part[k]) &&
+      s.flow.length === here.flow.length;
+    if (!same(up) || !same(down)) return undefined;
+    const slope = (a: number[], b: number[]): number[] => a.map((x, k) => (x - b[k]) / (2 * h));
+    return { part: here.part, volume: slope(up.volume, down.volume), flow: slope(up.flow, down.flow) };
+  }
+}
+
+/** Lets a compartment spell itself out, and keeps the numbers alone. */
+function spell(c: Compartment, of: KindValues, through: number): Spelled {
+  const part: number[] = [];
+  const volume: number[] = [];
+  const flow: number[] = [];
+  const node = (sort: number, v: number): number => {
+    part.push(sort);
+    return volume.push(v) - 1;
+  };
+  const maker: NodeMaker = {
+    through,
+    cell: (v) => node(Part.Cell, v),
+    delay: (v) => node(Part.Delay, v),
+    joint: () => node(Part.Joint, 0),
+    block: (block: Block) => node(Part.Block, block.volume + (block.pockets?.volume ?? 0)),
+    chain: () => flow.push(through),
+    exchange: (_a, _b, q) => flow.push(q, q),
+    cells: (volumes) => {
+      const first = volume.length;
+      for (const v of volumes) node(v > 0 ? Part.Cell : Part.Joint, v);
+      return first;
+    },
+    links: (_from, _to, q) => {
+      for (const x of q) flow.push(x);
+    },
+  };
+  c.kind.spell(maker, of);
+  return { part, volume, flow };
+}

@@ -1,0 +1,126 @@
+import { sparseRows } from "../numerics/sparse.js";
+import { DrivenSteps } from "./driven-steps.js";
+import { exact } from "./exact.js";
+import type { Drive, Query } from "./linear-system.js";
+import type { MovedPassage, MovedSystem } from "./moved-system.js";
+
+/** Curves of the probes, and by direction their derivatives; both to be added to. */
+export interface Curves {
+  readonly value: readonly Float64Array[];
+  readonly slopes: readonly (readonly Float64Array[])[];
+}
+
+/** Up to so many states a system is stepped densely, with its derivatives beside it. */
+const fewStates = 12;
+
+/**
+ * Adds what the probes of a system see of a drive. The derivative of what is seen late at u = t - d is that of the states, of
+ * the sum over them, and -d(delay)/dt times the slope in time; at a jump or kink from the right.
+ * @param times  per probe: s since the drive began, ascending, without any delay
+ */
+export function addCurves(system: MovedSystem, drive: Drive, times: readonly Float64Array[], into: Curves): void {
+  if (system.rows.length <= fewStates) addDensely(system, drive, times, into);
+  else addByEngine(system, drive, times, into);
+}
+
+function addDensely(system: MovedSystem, drive: Drive, times: readonly Float64Array[], into: Curves): void {
+  const dense = system.dense();
+  const { n } = dense;
+  const steps = new DrivenSteps(dense, drive);
+  system.probes.forEach((passages, r) => {
+    for (const passage of passages) {
+      const { states, weights, direct, delays } = passage;
+      const [first, local] = localTimes(times[r], passage.delay);
+      const looks = into.slopes.map((_, p) => lookOf(system, passage, p));
+      const value = into.value[r];
+      steps.walk(local, (i, v, rate, slope) => {
+        let sum = direct * rate;
+        for (let j = 0; j < states.length; j++) sum += weights[j] * v[states[j]];
+        value[first + i] += sum;
+        for (let p = 0; p < looks.length; p++) {
+          const look = looks[p];
+          const own = (p + 1) * n;
+          let moved = look.direct * rate - delays[p] * direct * slope;
+          for (let j = 0; j < states.length; j++) moved += weights[j] * v[own + states[j]];
+          for (let j = 0; j < look.states.length; j++) moved += look.weights[j] * v[look.states[j]];
+          into.slopes[p][r][first + i] += moved;
+        }
+      });
+    }
+  });
+}
+
+/** The times at which tracer has come, counted from then, and the index of the first. */
+function localTimes(times: Float64Array, delay: number): [number, Float64Array] {
+  let first = 0;
+  while (first < times.length && times[first] - delay < 0) first++;
+  return [first, times.subarray(first).map((t) => t - delay)];
+}
+
+/** The part of a derivative that is read from the states themselves: moved weights, and the shift in time. */
+function lookOf({ rows, input }: MovedSystem, passage: MovedPassage, p: number) {
+  const { states, weights, delays, moved } = passage;
+  const sum = new Map(moved[p].weights);
+  let { direct } = moved[p];
+  if (delays[p] !== 0) {
+    states.forEach((s, j) => {
+      const factor = -delays[p] * weights[j];
+      for (const [column, rate] of rows[s]) sum.set(column, (sum.get(column) ?? 0) + factor * rate);
+      direct += factor * input[s];
+    });
+  }
+  return { states: Int32Array.from(sum.keys()), weights: Float64Array.from(sum.values()), direct };
+}
+
+/** A large system and its derivatives as one larger system, for the exact engine. */
+function addByEngine(system: MovedSystem, drive: Drive, times: readonly Float64Array[], into: Curves): void {
+  const { rows, movedRows, input, movedInput, probes } = system;
+  const n = rows.length;
+  const all = [...rows];
+  movedRows.forEach((moved, p) => {
+    moved.forEach((row, i) => {
+      const whole = new Map(row);
+      for (const [j, x] of rows[i]) whole.set((p + 1) * n + j, x);
+      all.push(whole);
+    });
+  });
+  const queries: Query[] = [];
+  const adders: ((values: Float64Array) => void)[] = [];
+  probes.forEach((passages, r) => {
+    for (const passage of passages) {
+      const { states, weights, direct, delay, delays } = passage;
+      const local = times[r].map((t) => t - delay);
+      const ask = (signal: Query["signal"], into: Float64Array, late: number): void => {
+        queries.push({ signal, times: local, integral: false });
+        adders.push((values) => {
+          for (let i = 0; i < into.length; i++) {
+            into[i] += values[i];
+            if (late !== 0 && local[i] >= 0) into[i] -= late * driveSlope(drive, local[i]);
+          }
+        });
+      };
+      ask({ states, weights, direct }, into.value[r], 0);
+      into.slopes.forEach((slopes, p) => {
+        const look = lookOf(system, passage, p);
+        const signal = {
+          states: Int32Array.from([...states].map((s) => (p + 1) * n + s).concat([...look.states])),
+          weights: Float64Array.from([...weights, ...look.weights]),
+          direct: look.direct,
+        };
+        ask(signal, slopes[r], delays[p] * direct);
+      });
+    }
+  });
+  const whole = { rates: sparseRows(all), input: Float64Array.from([...input, ...movedInput.flat()]) };
+  const { answers } = exact.run(whole, drive, queries);
+  answers.forEach((a, q) => {
+    adders[q](a.value);
+  });
+}
+
+/** Slope of the rate, from the right. */
+function driveSlope(drive: Drive, u: number): number {
+  let piece = -1;
+  while (piece + 1 < drive.times.length && drive.times[piece + 1] <= u) piece++;
+  return piece < 0 ? 0 : drive.slope[piece];
+}
