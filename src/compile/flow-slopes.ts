@@ -1,11 +1,14 @@
 import type { Network } from "../model/network.js";
 import { type Branches, branchesOf, type FlowPlan, solveThrough } from "./flows.js";
+import type { SolvedStream } from "./solved-stream.js";
 import type { ValueSlopes } from "./value-slopes.js";
 
 /** How the steady flows of a network change along a direction in which its names move. */
 export class FlowSlopes {
   private readonly branches: Branches;
   private readonly through: Float64Array;
+  /** As they are. */
+  readonly streams: readonly SolvedStream[];
 
   /** At values for which the flows balance. */
   constructor(
@@ -21,6 +24,8 @@ export class FlowSlopes {
     });
     const solved = solveThrough(plan, this.branches, supply);
     this.through = "through" in solved ? solved.through : new Float64Array(plan.places.length);
+    const { share, fixed } = this.branches;
+    this.streams = this.streamsOf(share.map((s, k) => s * this.through[plan.from[k]] + fixed[k]));
   }
 
   /** Through-flow of a place (feeds, compartments, outlets), exchange left out, m3/s. */
@@ -29,7 +34,7 @@ export class FlowSlopes {
   }
 
   /** d through-flow and d stream flow, m3/s per unit of t; `names` moves along `slope`. Undefined where they cannot be told. */
-  along(slope: Float64Array): { through: Float64Array; streams: Float64Array } | undefined {
+  along(slope: Float64Array): { through: Float64Array; streams: readonly SolvedStream[] } | undefined {
     const { plan, branches, through } = this;
     const moved = this.movedBranches(slope);
     const source = new Float64Array(plan.places.length);
@@ -42,10 +47,13 @@ export class FlowSlopes {
     });
     const solved = solveThrough(plan, { share: branches.share, fixed: new Float64Array(own.length) }, source);
     if (!("through" in solved)) return undefined;
-    return {
-      through: solved.through,
-      streams: own.map((q, k) => q + branches.share[k] * solved.through[plan.from[k]]),
-    };
+    const flows = own.map((q, k) => q + branches.share[k] * solved.through[plan.from[k]]);
+    return { through: solved.through, streams: this.streamsOf(flows) };
+  }
+
+  private streamsOf(flows: Float64Array): SolvedStream[] {
+    const { streams, from, to } = this.plan;
+    return streams.map((stream, k) => ({ from: from[k], to: to[k], stream, flow: flows[k] }));
   }
 
   private movedBranches(slope: Float64Array): Branches {

@@ -1,10 +1,12 @@
 import type { Block } from "../compartments/block.js";
 import type { KindValues, NodeMaker } from "../compartments/kind.js";
+import type { ZoneTable } from "../compartments/zone-table.js";
 import type { Compartment, Network } from "../model/network.js";
 import { kindValues } from "./evaluate.js";
 import { FlowSlopes } from "./flow-slopes.js";
 import type { FlowPlan } from "./flows.js";
 import { Part, type Plant } from "./plant.js";
+import { broughtToMembers } from "./spell.js";
 import type { ValueSlopes } from "./value-slopes.js";
 
 /** How a plant changes along a direction, per unit of t; nodes and links as in the plant. */
@@ -25,6 +27,8 @@ interface Spelled {
   readonly flow: number[];
 }
 
+type Brought = ReturnType<typeof broughtToMembers>;
+
 /**
  * Derivatives of a plant at one set of values, without compiling it again: values by their derivatives, flows by the same
  * linear system. What a kind makes of its values is at most bilinear (volumes shared over members, flows in proportion to the
@@ -34,6 +38,7 @@ export class PlantSlopes {
   private readonly flows: FlowSlopes;
   private readonly given: readonly KindValues[];
   private readonly spelled: readonly Spelled[];
+  private readonly brought: Brought;
 
   constructor(
     private readonly network: Network,
@@ -43,7 +48,8 @@ export class PlantSlopes {
   ) {
     this.flows = new FlowSlopes(network, plan, plant.env, values);
     this.given = network.compartments.map((c) => kindValues(c, plant.env));
-    this.spelled = network.compartments.map((c, i) => spell(c, this.given[i], this.through(i)));
+    this.brought = broughtToMembers(network, this.flows.streams);
+    this.spelled = network.compartments.map((c, i) => spell(c, this.given[i], this.through(i), this.broughtTo(i)));
   }
 
   /**
@@ -56,18 +62,20 @@ export class PlantSlopes {
     if (!flows) return undefined;
     const volume = new Float64Array(plant.columns.size);
     const flow = new Float64Array(plant.flow.length);
+    const brought = broughtToMembers(network, flows.streams);
     let node = network.feeds.length;
     let link = 0;
     for (const [i, c] of network.compartments.entries()) {
-      const moved = this.spelledAlong(c, i, env, flows.through[network.feeds.length + i]);
+      const moved = c.zones
+        ? this.zonesAlong(c.zones, i, flows.through[network.feeds.length + i], link)
+        : this.spelledAlong(c, i, env, flows.through[network.feeds.length + i], brought);
       if (!moved) return undefined;
       volume.set(moved.volume, node);
       flow.set(moved.flow, link);
       node += spelled[i].volume.length;
       link += spelled[i].flow.length;
     }
-    flow.set(flows.streams, link);
-    link += flows.streams.length;
+    for (const stream of flows.streams) flow[link++] = stream.flow;
     for (const c of network.compartments) {
       for (const e of c.exchanges) {
         const d = this.values.along(e.flow, plant.env, env);
@@ -84,17 +92,41 @@ export class PlantSlopes {
     return { env, volume, inflow, flow };
   }
 
+  /** A table of flows is in proportion to what enters, where it enters at one place. */
+  private zonesAlong({ inlets }: ZoneTable, i: number, through: number, link: number): Spelled | undefined {
+    const { part, volume, flow } = this.spelled[i];
+    if (through !== 0 && inlets.length > 1) return undefined;
+    const grows = through === 0 ? 0 : through / this.through(i);
+    const flows = this.plant.flow.subarray(link, link + flow.length);
+    return { part, volume: volume.map(() => 0), flow: Array.from(flows, (q) => q * grows) };
+  }
+
   private through(compartment: number): number {
     return this.flows.throughOf(this.network.feeds.length + compartment);
   }
 
-  private spelledAlong(c: Compartment, i: number, env: Float64Array, through: number): Spelled | undefined {
+  private broughtTo(compartment: number): ReadonlyMap<string, number> | undefined {
+    return this.brought.get(this.network.feeds.length + compartment);
+  }
+
+  private spelledAlong(
+    c: Compartment,
+    i: number,
+    env: Float64Array,
+    through: number,
+    moved: Brought,
+  ): Spelled | undefined {
     const here = this.spelled[i];
     if (here.volume.length + here.flow.length === 0) return here;
     const given = this.given[i];
     const slopes: Record<string, number> = {};
     // As far as nothing changes its sign.
     let h = through === 0 ? Number.POSITIVE_INFINITY : Math.abs(this.through(i) / through) / 8;
+    const brought = this.broughtTo(i);
+    const broughtSlope = moved.get(this.network.feeds.length + i);
+    for (const [suffix, d] of broughtSlope ?? []) {
+      if (d !== 0) h = Math.min(h, Math.abs((brought?.get(suffix) ?? 0) / d) / 8);
+    }
     for (const key in c.values) {
       slopes[key] = this.values.along(c.values[key], this.plant.env, env);
       if (slopes[key] !== 0) h = Math.min(h, Math.abs(given.values[key] / slopes[key]) / 8);
@@ -105,7 +137,9 @@ export class PlantSlopes {
     const at = (by: number): Spelled => {
       const values: Record<string, number> = {};
       for (const key in slopes) values[key] = given.values[key] + by * slopes[key];
-      return spell(c, { ...given, values }, this.through(i) + by * through);
+      const enters =
+        brought && new Map([...brought].map(([s, q]) => [s, q + by * (broughtSlope?.get(s) ?? 0)] as const));
+      return spell(c, { ...given, values }, this.through(i) + by * through, enters);
     };
     const [up, down] = [at(h), at(-h)];
     const same = (s: Spelled): boolean =>
@@ -119,7 +153,7 @@ export class PlantSlopes {
 }
 
 /** Lets a compartment spell itself out, and keeps the numbers alone. */
-function spell(c: Compartment, of: KindValues, through: number): Spelled {
+function spell(c: Compartment, of: KindValues, through: number, brought: NodeMaker["brought"]): Spelled {
   const part: number[] = [];
   const volume: number[] = [];
   const flow: number[] = [];
@@ -129,11 +163,12 @@ function spell(c: Compartment, of: KindValues, through: number): Spelled {
   };
   const maker: NodeMaker = {
     through,
+    brought,
     cell: (v) => node(Part.Cell, v),
     delay: (v) => node(Part.Delay, v),
     joint: () => node(Part.Joint, 0),
     block: (block: Block) => node(Part.Block, block.volume + (block.pockets?.volume ?? 0)),
-    chain: () => flow.push(through),
+    chain: (_a, _b, q = through) => flow.push(q),
     exchange: (_a, _b, q) => flow.push(q, q),
     cells: (volumes) => {
       const first = volume.length;

@@ -31,7 +31,7 @@ export function spellOut(network: Network, env: Float64Array, flows: Flows): Spe
     entry.set(name, node);
     exit.set(name, node);
   };
-  const brought = broughtToMembers(network, flows);
+  const brought = broughtToMembers(network, flows.streams);
   for (const f of network.feeds) joint(f.name);
   network.compartments.forEach((c, i) => {
     const through = flows.through[network.feeds.length + i];
@@ -81,7 +81,7 @@ export function spellOut(network: Network, env: Float64Array, flows: Flows): Spe
 }
 
 /** By place, what streams bring to each member of a body where one of them enters past the first. */
-function broughtToMembers(network: Network, { streams }: Flows): Map<number, Map<string, number>> {
+export function broughtToMembers(network: Network, streams: Flows["streams"]): Map<number, Map<string, number>> {
   const brought = new Map<number, Map<string, number>>();
   const bodyAt = (place: number) => network.compartments[place - network.feeds.length];
   for (const { to, stream } of streams) {

@@ -74,7 +74,8 @@ export class DrivenSteps {
     const { n } = this.system;
     const more = slope === 0 ? 1 : 2;
     const m = n + more;
-    const steps = (this.driven[more] ??= this.drivenSteps(more));
+    const steps = this.driven[more] ?? this.drivenSteps(more);
+    this.driven[more] = steps;
     const w = new Float64Array(steps.length);
     for (let p = 0; p < this.count; p++) for (let i = 0; i < n; i++) w[p * m + i] = v[p * n + i];
     w[n] = level;

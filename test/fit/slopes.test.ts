@@ -97,6 +97,10 @@ describe("derivatives of a tracer curve agree with differences of the sixth orde
   test.each([
     ["a chain", "  a: {kind: stirred, repeat: 5, volume: 100 L, to: out}"],
     ["a chain with backflow", "  a: {kind: stirred, repeat: 4, volume: 100 L, backflow: 30 %, to: out}"],
+    [
+      "a chain entered past its first",
+      "  a: {kind: junction, to: {b: 70 %, b.3: rest}}\n  b: {kind: stirred, repeat: 4, volume: 100 L, backflow: 30 %, to: out}",
+    ],
     ["pockets", "  a: {kind: stirred, repeat: 2, volume: 100 L, stagnant: {volume: 20 L, exchange: 1 L/min}, to: out}"],
     [
       "many states",
@@ -148,7 +152,8 @@ describe("derivatives of a tracer curve agree with differences of the sixth orde
     expect(facts.length).toBe(4);
     for (const fact of facts) {
       const direction = fact.direction(0);
-      const answer = direction && model.slopes?.(trial, { values: {}, shifted: new Set() }, [{ time: times }], [direction]);
+      const answer =
+        direction && model.slopes?.(trial, { values: {}, shifted: new Set() }, [{ time: times }], [direction]);
       const h = fact.sd / 50;
       const moved = (k: number): Float64Array => {
         const to = { trials: [trial], values: {} };
