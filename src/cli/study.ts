@@ -41,7 +41,8 @@ export async function study(file: string, options: StudyOptions, { inputs, io }:
   const status: ExitStatus = result.stopped ? 130 : result.converged ? 0 : 3;
   const files = await inputs.list();
   const made = reportOf(result, { files, version, command: commandLine(file, options) });
-  const json = { ok: status === 0, ...studyJson(result), answer: made.report.answer };
+  const { answer } = made.report;
+  const json = { ok: status === 0, ...studyJson(result), answer: answer.map((a) => `${a.about}: ${a.says}`) };
   // Half a study must not take the place of a whole report.
   const path = folder === undefined || result.stopped ? undefined : save(folder, made, io);
   if (folder !== undefined && path !== undefined) {
@@ -50,7 +51,7 @@ export async function study(file: string, options: StudyOptions, { inputs, io }:
   }
   return {
     status,
-    text: studyText(result, made.report.answer, path),
+    text: studyText(result, answer, path),
     json: { ...json, report: path ?? null },
     notes: notesOf(status, folder, path),
   };

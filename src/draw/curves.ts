@@ -5,7 +5,8 @@ import { type Axis, bottomAxis, leftAxis, leftRoom, linearAxis, logAxis } from "
 import { caption, drawCaption } from "./caption.js";
 import { type EndLabel, endLabels, endRoom } from "./line-labels.js";
 import { type PictureOptions, picture } from "./picture.js";
-import { points, trace } from "./traces.js";
+import { axisData, type Plotted } from "./plotted.js";
+import { area, points, trace } from "./traces.js";
 
 /** Lines over one pair of axes, such as E or F of several outlets, or rivals over the same points. */
 export interface Curves {
@@ -24,6 +25,8 @@ export interface CurveLine {
   readonly y: ArrayLike<number>;
   /** Parts of a distribution that all come at one time: plug flow. `area` is the share of the whole. */
   readonly spikes?: readonly { readonly x: number; readonly area: number }[];
+  /** 95 % of what is possible lies here. */
+  readonly band?: { readonly low: ArrayLike<number>; readonly high: ArrayLike<number> };
   readonly accent?: boolean;
 }
 
@@ -37,12 +40,18 @@ export interface CurvesOptions extends PictureOptions {
 const styles = ["curve", "curve second", "curve third", "curve rest"];
 
 /** Draws the lines with their names at their right ends, and spikes as arrows with their share. */
-export function drawCurves(curves: Curves, options: CurvesOptions = {}): Svg {
+export const drawCurves = (curves: Curves, options: CurvesOptions = {}): Svg => plotCurves(curves, options).drawing;
+
+/** The same with the numbers behind it. */
+export function plotCurves(curves: Curves, options: CurvesOptions = {}): Plotted {
   const width = options.width ?? 640;
   const height = options.height ?? 240;
   const top = options.untitled ? 22 : 54;
   const yRange = [top + height, top] as const;
-  const values = [...curves.lines.flatMap((l) => Array.from(l.y)), ...Array.from(curves.points?.y ?? [])];
+  const values = [
+    ...curves.lines.flatMap((l) => [...Array.from(l.y), ...(options.log ? [] : Array.from(l.band?.high ?? []))]),
+    ...Array.from(curves.points?.y ?? []),
+  ];
   const ay = options.log ? logAxis(values, yRange) : linearAxis([...values, 0], yRange, 5);
   const left = leftRoom(ay);
   const plot: Box = { x: left, y: top, width: width - left - endRoom(curves.lines.map((l) => l.label)), height };
@@ -58,6 +67,7 @@ export function drawCurves(curves: Curves, options: CurvesOptions = {}): Svg {
   const parts = [
     options.untitled ? "" : drawCaption(caption([{ words: curves.title, style: "title" }], 0, 0)),
     leftAxis(ay, plot, curves.y),
+    ...curves.lines.map((l) => (l.band ? area(l.x, l.band.low, l.band.high, ax, ay) : "")),
     measured,
     ...lines,
     ...curves.lines.map((l) => spikes(l, curves.lines.length > 1, ax, plot)),
@@ -68,7 +78,24 @@ export function drawCurves(curves: Curves, options: CurvesOptions = {}): Svg {
     ).svg,
   ];
   const view = { x: -16, y: -12, width: width + 32, height: top + height + 60 };
-  return picture(curves.title, inWords(curves), view, options.theme ?? "auto", parts);
+  const { points: p } = curves;
+  const series = [
+    ...(p ? [{ label: "measured", x: p.x, y: p.y }] : []),
+    ...curves.lines.flatMap((l) => [
+      { label: l.label, x: l.x, y: l.y },
+      ...(l.band
+        ? [
+            { label: `${l.label}, 2.5 %`, x: l.x, y: l.band.low, hidden: true },
+            { label: `${l.label}, 97.5 %`, x: l.x, y: l.band.high, hidden: true },
+          ]
+        : []),
+    ]),
+  ];
+  const axes = { x: axisData(ax, curves.x), y: axisData(ay, curves.y, options.log) };
+  return {
+    drawing: picture(curves.title, inWords(curves), view, options.theme ?? "auto", parts),
+    data: { plots: [{ label: "", box: plot, ...axes, series }] },
+  };
 }
 
 const styleOf = (l: CurveLine, k: number): string =>

@@ -8,6 +8,7 @@ import { Clutter } from "./clutter.js";
 import { separated } from "./heights.js";
 import { placeAt } from "./line-labels.js";
 import { type PictureOptions, picture } from "./picture.js";
+import { axisData, type PlotData, type Plotted } from "./plotted.js";
 import { area, largest, points, stems, trace } from "./traces.js";
 
 /** Measured and fitted curve of one or more readings, each above its residuals. All arrays of a reading are of one length. */
@@ -47,9 +48,13 @@ const plotHeight = 230;
 const stripHeight = 52;
 
 /** Measured points small and open, the fitted line on top, its band behind; residuals below on the same time axis. */
-export function drawFit(curve: FitCurve, options: FitCurveOptions = {}): Svg {
+export const drawFit = (curve: FitCurve, options: FitCurveOptions = {}): Svg => plotFit(curve, options).drawing;
+
+/** The same with the numbers behind it. */
+export function plotFit(curve: FitCurve, options: FitCurveOptions = {}): Plotted {
   const width = options.width ?? 640;
   const parts: Svg[] = [];
+  const plots: PlotData[] = [];
   let y = 0;
   if (!options.untitled) {
     parts.push(drawCaption(caption([{ words: curve.title, style: "title" }], 0, 0)));
@@ -58,10 +63,11 @@ export function drawFit(curve: FitCurve, options: FitCurveOptions = {}): Svg {
   for (const reading of curve.readings) {
     const panel = drawPanel(reading, curve, y, width, options.log ?? false);
     parts.push(panel.svg);
+    plots.push(panel.data);
     y = panel.bottom + 20;
   }
   const view = { x: -16, y: -12, width: width + 32, height: y + 4 };
-  return picture(curve.title, inWords(curve), view, options.theme ?? "auto", parts);
+  return { drawing: picture(curve.title, inWords(curve), view, options.theme ?? "auto", parts), data: { plots } };
 }
 
 function drawPanel(
@@ -70,7 +76,7 @@ function drawPanel(
   top: number,
   width: number,
   log: boolean,
-): { svg: Svg; bottom: number } {
+): { svg: Svg; bottom: number; data: PlotData } {
   const values = [...Array.from(r.measured), ...Array.from(r.fitted)];
   const yRange = [top + 42 + plotHeight, top + 42] as const;
   const ay = log ? logAxis(values, yRange) : linearAxis([...values, 0, 1.06 * largest(values, 0)], yRange, 5, false);
@@ -114,7 +120,18 @@ function drawPanel(
     bottomAxis(ax, strip, `time, ${curve.timeUnit}`),
     timeMarks(r, ax, strip),
   ].join("");
-  return { svg, bottom: strip.y + strip.height + (r.marks?.length ? 46 : 36) };
+  const data = {
+    label: r.label,
+    box: plot,
+    x: axisData(ax, `time, ${curve.timeUnit}`),
+    y: axisData(ay, curve.value, log),
+    series: [
+      { label: "measured", x: r.time, y: r.measured },
+      { label: "fitted", x: r.time, y: r.fitted },
+      { label: "residual", x: r.time, y: r.residual, hidden: true },
+    ],
+  };
+  return { svg, bottom: strip.y + strip.height + (r.marks?.length ? 46 : 36), data };
 }
 
 /** Places beside a line, from its highest point rightwards, then leftwards. */

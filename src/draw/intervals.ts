@@ -5,6 +5,7 @@ import { type Axis, bottomAxis, linearAxis } from "./axes.js";
 import { caption, drawCaption, extent } from "./caption.js";
 import { separated } from "./heights.js";
 import { type PictureOptions, picture } from "./picture.js";
+import type { TableData } from "./plotted.js";
 
 /** Values of one quantity in one unit, each with its 95 % interval. */
 export interface Intervals {
@@ -69,6 +70,12 @@ export function drawIntervals(of: Intervals, options: PictureOptions & { readonl
   const view = { x: -16, y: -12, width: Math.max(width, far + right) + 32, height: y + 60 };
   return picture(of.title, inWords(of), view, options.theme ?? "auto", parts);
 }
+
+/** The rows as a table. */
+export const intervalsTable = (of: Intervals): TableData => ({
+  head: ["", of.quantity, "low", "high"],
+  rows: of.rows.map((r) => [r.label, r.value, r.low, r.high]),
+});
 
 /** Changes compared with today: the same rows, today's value as the reference, the probability of being better at the right. */
 export const drawChanges = (of: Intervals, options: PictureOptions & { readonly width?: number } = {}): Svg =>

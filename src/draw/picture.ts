@@ -1,6 +1,6 @@
 import { element, rectangle } from "../svg/marks.js";
 import { type Box, escapeText, px, type Svg } from "../svg/svg.js";
-import { drawingDefinitions, drawingStyle, type Theme } from "../svg/theme.js";
+import { classesIn, drawingDefinitions, drawingStyle, type Theme } from "../svg/theme.js";
 
 export interface PictureOptions {
   /** `auto` (default) follows the reader's screen and prints light. */
@@ -11,6 +11,8 @@ export interface PictureOptions {
 
 /** A whole SVG that stands by itself: its own style, its title and what it shows in words. */
 export function picture(title: string, says: string, view: Box, theme: Theme, parts: readonly Svg[]): Svg {
+  const content = `${rectangle(view, "paper")}${parts.join("")}`;
+  const used = classesIn(content);
   return element(
     "svg",
     {
@@ -23,6 +25,6 @@ export function picture(title: string, says: string, view: Box, theme: Theme, pa
       role: "img",
     },
     `<title>${escapeText(title)}</title><desc>${escapeText(says)}</desc>` +
-      `<style>${drawingStyle(theme)}</style>${drawingDefinitions}${rectangle(view, "paper")}${parts.join("")}`,
+      `<style>${drawingStyle(theme, used)}</style>${drawingDefinitions(used)}${content}`,
   );
 }

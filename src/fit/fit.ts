@@ -156,7 +156,7 @@ function resultOf(setup: Setup, settled: Settled, found: SearchResult): Fit {
 /** Where a fit was cut short there is a best so far, and no telling how good it is. */
 const unsure = (p: FittedParameter): FittedParameter => ({ ...p, standardError: undefined, interval95: undefined });
 
-function readingsOf(setup: Setup, { at }: Settled): FittedReading[] {
+function readingsOf(setup: Setup, { at, problem }: Settled): FittedReading[] {
   return setup.blocks.map((block, b) => {
     const fitted = fittedCurve(block.time, block.origin, at, b);
     return {
@@ -168,6 +168,7 @@ function readingsOf(setup: Setup, { at }: Settled): FittedReading[] {
       measured: block.measured,
       fitted,
       residual: block.measured.map((y, i) => y - fitted[i]),
+      weight: problem.weight.slice(block.from, block.from + block.time.length),
     };
   });
 }

@@ -82,6 +82,8 @@ export interface FittedReading {
   readonly fitted: Float64Array;
   /** measured - fitted. */
   readonly residual: Float64Array;
+  /** What each residual was multiplied by in the sum of squares, 1 / SI. */
+  readonly weight: Float64Array;
 }
 
 /** Something a reader of the fit must know: words, and the numbers behind them. */

@@ -1,6 +1,7 @@
 import { escapeText, type Svg } from "../svg/svg.js";
 import { drawingDefinitions, drawingStyle } from "../svg/theme.js";
 import type { Figure } from "./input.js";
+import { embedded, embeddedJson } from "./page/embedded.js";
 
 /** A piece of HTML source. */
 export type Html = string;
@@ -51,14 +52,17 @@ export function terms(pairs: readonly (readonly [term: string, says: string])[])
   return `<dl>${pairs.map(([t, s]) => `<dt>${escapeText(t)}</dt><dd>${escapeText(s)}</dd>`).join("")}</dl>`;
 }
 
-export const figure = ({ drawing, caption }: Figure): Html =>
-  `<figure>${onPage(drawing)}<figcaption>${escapeText(caption)}</figcaption></figure>`;
+/** A drawing with its caption and, for the page's script, the numbers behind it. */
+export function figure({ name, drawing, caption, data }: Figure): Html {
+  const numbers = data ? `<script type="application/json">${embeddedJson(embedded(name, data))}</script>` : "";
+  return `<figure id="figure-${escapeText(name)}" data-name="${escapeText(name)}"><div class="drawing">${onPage(drawing)}</div><figcaption>${escapeText(caption)}</figcaption>${numbers}</figure>`;
+}
 
 /** A drawing without the style and definitions that all drawings of a page share (`sharedDrawing`). */
-const onPage = (drawing: Svg): Svg => drawing.replace(/<style>[^<]*<\/style>/, "").replace(drawingDefinitions, "");
+const onPage = (drawing: Svg): Svg => drawing.replace(/<style>[^<]*<\/style>(<defs>.*?<\/defs>)?/, "");
 
 /** What all drawings of a page share, once: style, gradients, hatching. */
-export const sharedDrawing: Html = `<svg class="bm" width="0" height="0" style="position:absolute" aria-hidden="true"><style>${drawingStyle("auto")}</style>${drawingDefinitions}</svg>`;
+export const sharedDrawing: Html = `<svg class="bm" width="0" height="0" style="position:absolute" aria-hidden="true"><style>${drawingStyle("auto")}</style>${drawingDefinitions()}</svg>`;
 
 const cellWords = (cell: Cell): string =>
   typeof cell === "string"

@@ -1,3 +1,4 @@
+import type { FigureData } from "../draw/plotted.js";
 import type { Svg } from "../svg/svg.js";
 
 /** Everything a study's report says, in the units that people read. Sentences are ready to print, without a full stop where short. */
@@ -7,10 +8,10 @@ export interface StudyReport {
    * The answer in about five lines: what is wrong with the vessel and how sure, what it makes now, the best change and
    * what it would bring, the one test that would settle what is open.
    */
-  readonly answer: readonly string[];
+  readonly answer: readonly AnswerLine[];
   /** The vessel as fitted. */
   readonly vessel?: Figure;
-  /** Measured beside fitted curves, rivals over the same points. */
+  /** Measured beside fitted curves, with what is left between them. */
   readonly curves: readonly Figure[];
   readonly data: readonly DataQuality[];
   readonly findings: readonly ReportFinding[];
@@ -19,9 +20,12 @@ export interface StudyReport {
   readonly rivals: readonly Rival[];
   /** "bypass and corner fit equally well": what these data cannot tell apart. */
   readonly equals: readonly string[];
+  /** Rivals over the same points. */
+  readonly rivalCurves: readonly Figure[];
   readonly parameters: readonly ReportParameter[];
-  /** Pairs that move together, most first. */
-  readonly correlations: readonly { readonly one: string; readonly other: string; readonly value: number }[];
+  readonly identifiability: Identifiability;
+  /** Distributions of residence time and age of the vessel as fitted. */
+  readonly residence: readonly Figure[];
   readonly predictions: readonly Prediction[];
   readonly changes: readonly Change[];
   readonly assumptions: readonly string[];
@@ -31,10 +35,30 @@ export interface StudyReport {
   readonly provenance: Provenance;
 }
 
+/** One line of the answer, under a few words of what it is about: "How sure". */
+export interface AnswerLine {
+  readonly about: string;
+  readonly says: string;
+}
+
 /** A drawing with its caption; the drawing brings its own words for those who cannot see it. */
 export interface Figure {
+  /** What its files are called when it is saved, and its place in the page: "fit-1". */
+  readonly name: string;
   readonly drawing: Svg;
   readonly caption: string;
+  /** The numbers behind it. */
+  readonly data?: FigureData;
+}
+
+/** What the tests can tell of the parameters. */
+export interface Identifiability {
+  /** Sentences, the most important first. */
+  readonly says: readonly string[];
+  /** Pairs that move together, most first. */
+  readonly correlations: readonly { readonly one: string; readonly other: string; readonly value: number }[];
+  /** Regions of pairs, profiles. */
+  readonly figures: readonly Figure[];
 }
 
 /** A number with its 95 % interval; left out where none was worked out, NaN where the data cannot tell it. All in `unit`. */

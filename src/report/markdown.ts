@@ -7,7 +7,7 @@ export function writeSummary(report: StudyReport): string {
   const { provenance: p } = report;
   const parts = [
     `# ${inline(report.title)}`,
-    report.answer.map((a, k) => `${k + 1}. ${inline(a)}`).join("\n"),
+    report.answer.map(({ about, says }) => `- **${inline(about)}**: ${inline(says)}`).join("\n"),
     table(
       "What it makes",
       ["duty", "quantity", "value (95 %)"],

@@ -1,11 +1,12 @@
 import { escapeText } from "../svg/svg.js";
-import { type Html, list, sharedDrawing } from "./html.js";
-import type { StudyReport } from "./input.js";
+import { type Html, sharedDrawing } from "./html.js";
+import type { AnswerLine, StudyReport } from "./input.js";
+import { reportScript } from "./page/script.js";
+import { reportStyle } from "./page/style.js";
 import { sections } from "./sections.js";
-import { reportStyle } from "./style.js";
 
 /**
- * The report of a study as one HTML page that needs nothing else: style and drawings inside, no script, no network.
+ * The report of a study as one HTML page that needs nothing else: style, drawings, numbers and script inside, no network.
  * It reads from the answer down to where everything comes from, prints on A4 and Letter, and follows a dark screen.
  */
 export function writeReport(report: StudyReport): Html {
@@ -16,12 +17,21 @@ export function writeReport(report: StudyReport): Html {
     `<title>${escapeText(report.title)}</title><style>${reportStyle}</style></head><body>`,
     sharedDrawing,
     `<header><h1>${escapeText(report.title)}</h1>${contents(body)}</header>`,
-    `<main><section class="answer" aria-label="The answer">${list(report.answer, true)}</section>`,
+    `<main>${answer(report.answer)}`,
     ...body,
     "</main>",
-    `<footer>backmix ${escapeText(report.provenance.version)}</footer></body></html>`,
+    `<footer>backmix ${escapeText(report.provenance.version)}</footer><script>${reportScript}</script></body></html>`,
     "",
   ].join("\n");
+}
+
+/** What the reader came for, each line under what it is about; lines about the same thing stand together. */
+function answer(lines: readonly AnswerLine[]): Html {
+  const said = lines.map(({ about, says }, k) => {
+    const head = about === lines[k - 1]?.about ? "" : `<dt>${escapeText(about)}</dt>`;
+    return `${head}<dd>${escapeText(says)}</dd>`;
+  });
+  return `<section class="answer" aria-label="The answer"><dl>${said.join("")}</dl></section>`;
 }
 
 /** Links to the sections that are there. */

@@ -8,6 +8,7 @@ import type { Problem } from "../problems/problem.js";
 import type { SteadyState } from "../reaction/steady.js";
 import type { Unit } from "../units/unit.js";
 import type { Standing } from "./rank.js";
+import type { Residence } from "./residence.js";
 
 /** Everything that a study found out. SI, with units for people beside. */
 export interface StudyResult {
@@ -19,6 +20,8 @@ export interface StudyResult {
   /** Every duty for the best rival, and for the others that survive. */
   readonly predictions: readonly Prediction[];
   readonly changes: readonly ChangeOutcome[];
+  /** Of the best rival. */
+  readonly residence: Residence | undefined;
   /** Draws that intervals rest on. */
   readonly draws: number;
   readonly stopped: "cancelled" | undefined;

@@ -6,6 +6,7 @@ import { changeOutcomes } from "./compare.js";
 import { drawsOf, type RivalDraws } from "./draws-of.js";
 import { predictDuty } from "./predict.js";
 import { standings, survives } from "./rank.js";
+import { residenceOf } from "./residence.js";
 import type { Ranked, StudyResult } from "./result.js";
 import { momentsFacts } from "./trial-facts.js";
 
@@ -61,12 +62,14 @@ export function runStudy(study: Study, options: StudyOptions = {}): StudyResult 
       return cancelled() ? [] : [changeOutcomes(r, change, study.duties, draws.get(r.rival) as RivalDraws, study.seed)];
     }),
   );
+  const best = alive[0];
   return {
     study,
     ranking,
     readings,
     predictions,
     changes,
+    residence: best?.plant && !cancelled() ? residenceOf(best.plant, draws.get(best.rival)?.settings ?? []) : undefined,
     draws: Math.min(count, ...[...draws.values()].map((d) => d.settings.length)),
     stopped: cancelled() ? "cancelled" : undefined,
     converged: ranking.every((r) => r.fit?.converged ?? false),

@@ -60,7 +60,7 @@ export const palettes: Readonly<Record<"light" | "dark", Palette>> = {
 export type Theme = "auto" | "light" | "dark";
 
 /** A metric-compatible family on every system: text is measured with its widths (`measure.ts`). */
-export const fontFamily = `"Helvetica Neue", Helvetica, Arial, "Liberation Sans", sans-serif`;
+export const fontFamily = `"Helvetica Neue", Helvetica, Arial, "Liberation Sans", Arimo, "Nimbus Sans", FreeSans, sans-serif`;
 
 /** Custom properties of both palettes, to stand before rules that use `var(--bm-…)`. `scope` is the element that holds them. */
 export function themeVariables(scope: string): string {
@@ -74,20 +74,46 @@ export function themeVariables(scope: string): string {
   );
 }
 
-/** The style sheet inside a drawing. All selectors live under `.bm`, so that drawings do not touch the page around them. */
-export function drawingStyle(theme: Theme): string {
+/**
+ * The style sheet inside a drawing. All selectors live under `.bm`, so that drawings do not touch the page around them.
+ * @param used  classes that occur; rules for others are left out
+ */
+export function drawingStyle(theme: Theme, used?: ReadonlySet<string>): string {
   const colour = (name: keyof Palette): string => (theme === "auto" ? `var(--bm-${name})` : palettes[theme][name]);
+  const occurs = (selector: string): boolean =>
+    !used || [...selector.matchAll(/\.([\w-]+)/g)].every(([, name]) => used.has(name));
   const rules = drawingRules(colour)
+    .filter(([selectors]) => selectors.some(occurs))
     .map(([selectors, body]) => `${selectors.map((s) => `.bm ${s}`).join(",")}{${body}}`)
     .join("");
   return (theme === "auto" ? themeVariables(".bm") : "") + rules;
 }
 
-/** Gradients and hatching that the body pictures refer to. */
-export const drawingDefinitions: Svg =
-  `<defs><linearGradient id="bm-age"><stop class="young" offset="0"/><stop class="old" offset="1"/></linearGradient>` +
-  `<pattern id="bm-hatch" width="6" height="6" patternUnits="userSpaceOnUse" patternTransform="rotate(45)">` +
-  `<line class="hatch" x1="0" y1="0" x2="0" y2="6"/></pattern></defs>`;
+/** Gradients and hatching that the body pictures refer to; only those of the classes that occur, where these are given. */
+export function drawingDefinitions(used?: ReadonlySet<string>): Svg {
+  const parts = Object.entries(definitions).flatMap(([name, svg]) => (!used || used.has(name) ? [svg] : []));
+  return parts.length === 0 ? "" : `<defs>${parts.join("")}</defs>`;
+}
+
+/** By the class that refers to each. */
+const definitions: Readonly<Record<string, Svg>> = {
+  ageing: `<linearGradient id="bm-age"><stop class="young" offset="0"/><stop class="old" offset="1"/></linearGradient>`,
+  hatched:
+    `<pattern id="bm-hatch" width="6" height="6" patternUnits="userSpaceOnUse" patternTransform="rotate(45)">` +
+    `<line class="hatch" x1="0" y1="0" x2="0" y2="6"/></pattern>`,
+};
+
+/** What the definitions use. */
+const classesOfDefinitions: Readonly<Record<string, readonly string[]>> = {
+  ageing: ["young", "old"],
+  hatched: ["hatch"],
+};
+
+/** Classes that occur in a drawing, with those of the definitions that it refers to. */
+export function classesIn(svg: Svg): ReadonlySet<string> {
+  const own = [...svg.matchAll(/ class="([^"]*)"/g)].flatMap(([, names]) => names.split(" "));
+  return new Set([...own, ...own.flatMap((name) => classesOfDefinitions[name] ?? [])]);
+}
 
 type Rule = readonly [selectors: readonly string[], body: string];
 
@@ -110,6 +136,9 @@ function drawingRules(colour: (name: keyof Palette) => string): readonly Rule[] 
     [[".front"], `fill:${colour("old")};fill-opacity:.55;${wall};stroke-width:1`],
     [[".plate"], `fill:${colour("paper")};fill-opacity:.85`],
     [[".return"], `fill:none;${wall};stroke-width:1.25`],
+    [[".blank"], `fill:${colour("paper")};${wall};stroke-width:1.25`],
+    [[".tone"], `fill:${colour("wall")}`],
+    [[".ghost"], `fill:none;stroke:${colour("accent")};stroke-width:1.25;stroke-dasharray:3 2.5`],
     [[".still"], `fill:${colour("still")}`],
     [[".hatched"], `fill:url(#bm-hatch);stroke:${colour("hatch")};stroke-width:1;stroke-dasharray:4 2.5`],
     [[".hatch"], `stroke:${colour("hatch")};stroke-width:1.2`],
@@ -136,15 +165,18 @@ function drawingRules(colour: (name: keyof Palette) => string): readonly Rule[] 
     [[".point.dense"], "stroke-width:1.4;stroke-linecap:round"],
     [[".point.out"], `stroke:${colour("hatch")};stroke-dasharray:1.5 1.5`],
     [[".residual"], `stroke:${colour("wall")};stroke-width:1.25`],
+    [[".bar"], `fill:none;stroke:${colour("wall")};stroke-width:3`],
     [[".area"], `fill:${colour("old")};fill-opacity:.22`],
     [[".curve"], `fill:none;stroke:${colour("wall")};stroke-width:2;stroke-linejoin:round`],
     [[".curve.second"], `stroke:${colour("stream")};stroke-width:1.5;stroke-dasharray:7 3`],
     [[".curve.third"], `stroke:${colour("quiet")};stroke-width:1.5;stroke-dasharray:2 2.5`],
     [[".curve.rest"], `stroke:${colour("hatch")};stroke-width:1.1;stroke-dasharray:9 2.5 2 2.5`],
+    [[".curve.thin"], "stroke-width:1.25"],
     [[".curve.accent"], `stroke:${colour("accent")}`],
     [[".spike"], `stroke:${colour("accent")};stroke-width:2`],
     [[".spike-tip"], `fill:${colour("accent")}`],
     [[".interval"], `stroke:${colour("wall")};stroke-width:7;stroke-opacity:.4`],
+    [[".interval.narrow"], "stroke-width:4;stroke-opacity:.7"],
     [[".interval.look"], `stroke:${colour("accent")}`],
     [[".value"], `fill:${colour("wall")};stroke:${colour("paper")};stroke-width:1.5`],
     [[".value.look"], `fill:${colour("accent")}`],

@@ -1,6 +1,9 @@
-import { drawCurves } from "../../src/draw/curves.js";
-import { drawFit } from "../../src/draw/fit-curve.js";
+import { plotCurves } from "../../src/draw/curves.js";
+import { plotFit } from "../../src/draw/fit-curve.js";
 import { drawNetwork } from "../../src/draw/network.js";
+import { plotRegions } from "../../src/draw/regions.js";
+import { plotResiduals } from "../../src/draw/residuals.js";
+import { sheetTable } from "../../src/draw/sheet-table.js";
 import type { StudyReport } from "../../src/report/input.js";
 import { sheets } from "../draw/sheets.js";
 
@@ -13,18 +16,27 @@ const fitted = curve(76);
 export const demo: StudyReport = {
   title: "Why does V-3 convert less than designed?",
   answer: [
-    "About 10 % of the feed slips past the bulk to the outlet (95 %: 8 to 12 %); a corner of 200 L hardly exchanges.",
-    "V-3 now converts 82.3 % of A at normal flow (80.1 to 84.2 %).",
-    "A baffle would bring 85 % (83 to 87 %), better than today with 96 % probability.",
-    "The corner's volume and its exchange cannot be told apart; a test of twice the length would settle it.",
+    {
+      about: "What is wrong",
+      says: "About 10 % of the feed slips past the bulk to the outlet (95 %: 8 to 12 %); a corner of 200 L hardly exchanges.",
+    },
+    { about: "What it makes", says: "V-3 now converts 82.3 % of A at normal flow (80.1 to 84.2 %)." },
+    { about: "What to do", says: "A baffle would bring 85 % (83 to 87 %), better than today with 96 % probability." },
+    {
+      about: "Still open",
+      says: "The corner's volume and its exchange cannot be told apart; a test of twice the length would settle it.",
+    },
   ],
   vessel: {
+    name: "vessel",
     drawing: drawNetwork(sheets.v3, { untitled: true }),
+    data: { table: sheetTable(sheets.v3) },
     caption: "V-3 with the fitted values. Areas stand for volumes, widths for flows.",
   },
   curves: [
     {
-      drawing: drawFit(
+      name: "fit-1",
+      ...plotFit(
         {
           title: "Measured and fitted",
           timeUnit: "min",
@@ -51,21 +63,23 @@ export const demo: StudyReport = {
       caption: "Measured points, the fitted line, and what is left between them.",
     },
     {
-      drawing: drawCurves(
+      name: "residuals-1",
+      ...plotResiduals(
         {
-          title: "Rivals",
-          x: "time, min",
-          y: "tracer, g/L",
-          lines: [
-            { label: "bypass and corner", x: time, y: fitted },
-            { label: "bypass", x: time, y: curve(85) },
-            { label: "corner", x: time, y: curve(60) },
+          title: "Residuals",
+          timeUnit: "min",
+          readings: [
+            {
+              label: "product",
+              time,
+              value: wiggle.map((v) => v / 0.0008),
+              autocorrelation: [0.4, 0.2, -0.05, 0.03],
+            },
           ],
-          points: { x: time, y: fitted.map((v, k) => v + wiggle[k]), label: "measured" },
         },
-        { untitled: true, log: true },
+        { untitled: true },
       ),
-      caption: "Rivals over the same points, the best in full tone.",
+      caption: "Weighted residuals and their autocorrelation.",
     },
   ],
   data: [
@@ -102,6 +116,26 @@ export const demo: StudyReport = {
     { network: "bypass", freeParameters: 2, aicc: -807.2, weight: 0.07, verdict: "misses the tail after 200 min" },
     { network: "corner", freeParameters: 3, aicc: -701.9, weight: 0, verdict: "misses the early peak" },
   ],
+  rivalCurves: [
+    {
+      name: "rivals-1",
+      ...plotCurves(
+        {
+          title: "Rivals",
+          x: "time, min",
+          y: "tracer, g/L",
+          lines: [
+            { label: "bypass and corner", x: time, y: fitted },
+            { label: "bypass", x: time, y: curve(85) },
+            { label: "corner", x: time, y: curve(60) },
+          ],
+          points: { x: time, y: fitted.map((v, k) => v + wiggle[k]), label: "measured" },
+        },
+        { untitled: true, log: true },
+      ),
+      caption: "Rivals over the same points, the best in full tone.",
+    },
+  ],
   equals: ["volume and exchange of the corner: only their ratio is seen"],
   parameters: [
     {
@@ -112,7 +146,40 @@ export const demo: StudyReport = {
     { name: "riser", estimate: { value: 151.3, unit: "L", low: 144.1, high: 158.7 } },
     { name: "renewal", estimate: { value: 1.5, unit: "L/min", low: undefined, high: undefined }, atBound: "lower" },
   ],
-  correlations: [{ one: "stagnant", other: "renewal", value: 0.98 }],
+  identifiability: {
+    says: ["'stagnant' and 'renewal' move together (correlation 0.98)."],
+    correlations: [{ one: "stagnant", other: "renewal", value: 0.98 }],
+    figures: [
+      {
+        name: "regions",
+        ...plotRegions(
+          {
+            title: "Pairs",
+            freedom: 80,
+            pairs: [
+              {
+                x: { words: "stagnant, L", value: 200, standardError: 12, interval: [176, 224] },
+                y: { words: "renewal, L/min", value: 1.5, standardError: 0.2, interval: [1.1, 1.9] },
+                correlation: 0.98,
+              },
+            ],
+          },
+          { untitled: true },
+        ),
+        caption: "Inside the ellipse lies 95 % of what is possible.",
+      },
+    ],
+  },
+  residence: [
+    {
+      name: "exit-age",
+      ...plotCurves(
+        { title: "Exit ages", x: "time, min", y: "E, 1/min", lines: [{ label: "E", x: time, y: fitted }] },
+        { untitled: true },
+      ),
+      caption: "Ages of what leaves.",
+    },
+  ],
   predictions: [
     {
       duty: "Normal production",

@@ -28,7 +28,9 @@ test("a study cut short ranks nothing, rules nothing out and concludes nothing",
   expect(result.ranking.some((r) => r.fit?.stopped)).toBe(true);
   expect(result.predictions).toEqual([]);
   expect(answerOf(result)).toHaveLength(1);
-  expect(answerOf(result)[0]).toMatch(/^Interrupted: \d of 2 networks were fitted/);
+  expect(answerOf(result)).toEqual([
+    { about: "Interrupted", says: expect.stringMatching(/^Only \d of 2 networks were fitted/) },
+  ]);
 });
 
 test("a fit cut short gives its best so far without errors or intervals", () => {

@@ -1,13 +1,14 @@
 import type { Fit } from "../../fit/result.js";
 import type { Problem } from "../../problems/problem.js";
 import { chance, estimateLine } from "../../report/digits.js";
+import type { AnswerLine } from "../../report/input.js";
 import type { StudyResult } from "../../study/result.js";
 import { formatNumber } from "../../units/format.js";
 import { inUnit, type Unit } from "../../units/unit.js";
 import { blocks, type Column, table, wrap } from "./table.js";
 
 /** What a study found, on one screen: the answer first; the report has the rest. */
-export function studyText(result: StudyResult, answer: readonly string[], report: string | undefined): string {
+export function studyText(result: StudyResult, answer: readonly AnswerLine[], report: string | undefined): string {
   const marked = result.stopped
     ? " (interrupted: what was finished)"
     : result.converged
@@ -15,12 +16,20 @@ export function studyText(result: StudyResult, answer: readonly string[], report
       : " (a fit did not converge)";
   return blocks(
     `${result.study.title}${marked}`,
-    answer.map((line, i) => wrap(`  ${i + 1}. `, line)).join("\n"),
+    answerText(answer),
     rankingTable(result),
     predictionsTable(result),
     changesTable(result),
     report === undefined ? "" : `report: ${report}`,
   );
+}
+
+/** Lines beside what they are about, which is said once. */
+function answerText(answer: readonly AnswerLine[]): string {
+  const width = Math.max(0, ...answer.map((a) => a.about.length));
+  return answer
+    .map(({ about, says }, k) => wrap(`  ${(about === answer[k - 1]?.about ? "" : about).padEnd(width)}  `, says))
+    .join("\n");
 }
 
 const right = (title: string) => ({ title, align: "right" as const });

@@ -1,24 +1,33 @@
 import type { ChangedFigure, ChangeOutcome, StudyResult } from "../../study/result.js";
 import { chance, estimateLine } from "../digits.js";
+import type { AnswerLine } from "../input.js";
 import { differenceEstimate, estimate, readingUnit } from "./estimate.js";
 import { traitsOf } from "./traits.js";
 
 /** The answer in about five lines: what is wrong, how sure, what it makes, what a change brings, what is still open. */
-export function answerOf(result: StudyResult): string[] {
+export function answerOf(result: StudyResult): AnswerLine[] {
   const best = result.ranking[0];
-  if (result.stopped) return [interrupted(result)];
-  if (!best?.fit || !best.plant) return ["No network could be fitted to these trials; see the findings."];
+  if (result.stopped) return [{ about: "Interrupted", says: interrupted(result) }];
+  if (!best?.fit || !best.plant) {
+    return [{ about: "No answer", says: "No network could be fitted to these trials; see the findings." }];
+  }
   const lines = traitsOf(best.plant, best.fit).map((t) => t.line);
   const wrong =
     lines.length > 0
       ? `${capital(lines.join("; "))}.`
       : "No bypass, dead water or quiet zone shows in the best network.";
-  return [wrong, sure(result), ...makes(result), ...bestChange(result), open(result)];
+  return [
+    { about: "What is wrong", says: wrong },
+    { about: "How sure", says: sure(result) },
+    ...makes(result).map((says) => ({ about: "What it makes", says })),
+    ...bestChange(result).map((says) => ({ about: "What to do", says })),
+    { about: "Still open", says: open(result) },
+  ];
 }
 
 function interrupted(result: StudyResult): string {
   const done = result.ranking.filter((r) => r.fit && !r.fit.stopped).length;
-  return `Interrupted: ${done} of ${result.ranking.length} networks were fitted, so none is ruled out and nothing is concluded.`;
+  return `Only ${done} of ${result.ranking.length} networks were fitted, so none is ruled out and nothing is concluded.`;
 }
 
 function sure(result: StudyResult): string {
@@ -64,12 +73,13 @@ function bestChange(result: StudyResult): string[] {
     .sort((a, b) => gain(b.f) - gain(a.f));
   if (told.length === 0) return [];
   const { c, f } = told[0];
+  const none = gain(f) > 0 ? "" : "None of the changes looked at is likely to help. ";
   const unit = readingUnit(f.duty, f.name, f.unit);
   const now = estimateLine(estimate(f.before, undefined, unit));
   const then = estimateLine(estimate(f.value, f.interval95, unit));
   const by = estimateLine(differenceEstimate(f.value - f.before, f.difference95, unit));
   const sure = f.probabilityBetter === undefined ? "" : `; chance of being better ${chance(f.probabilityBetter)}`;
-  return [`${c.change.title}: ${f.name} from ${now} to ${then}, by ${by}${sure}.`];
+  return [`${none}${c.change.title}: ${f.name} from ${now} to ${then}, by ${by}${sure}.`];
 }
 
 const gain = (f: ChangedFigure): number =>
@@ -79,13 +89,13 @@ function open(result: StudyResult): string {
   const best = result.ranking[0];
   const equals = result.ranking.filter((r) => r.survives).length;
   if (equals > 1) {
-    return "Still open: which of the equal networks is right. A test at another flow or stirrer speed, or a probe inside the vessel, would tell.";
+    return "Which of the equal networks is right. A test at another flow or stirrer speed, or a probe inside the vessel, would tell.";
   }
   const loose = best.fit?.findings.filter((f) => f.code === "cannot-tell" || f.code === "parameter-at-bound") ?? [];
-  if (loose.length > 0) return `Still open: ${loose[0].message}. ${loose[0].fix}.`;
+  if (loose.length > 0) return `${capital(loose[0].message)}. ${capital(loose[0].fix)}.`;
   const trials = result.readings.length;
-  if (trials < 2) return "Still open: one test says nothing of the next day. Repeat it, best at another flow.";
-  return "Still open: whether the vessel is the same on another day. Repeat one test before money is spent, and again after the change.";
+  if (trials < 2) return "One test says nothing of the next day. Repeat it, best at another flow.";
+  return "Whether the vessel is the same on another day. Repeat one test before money is spent, and again after the change.";
 }
 
 const capital = (words: string): string => words.charAt(0).toUpperCase() + words.slice(1);

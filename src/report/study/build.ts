@@ -1,11 +1,22 @@
 import type { Ranked, StudyResult } from "../../study/result.js";
 import { dimensions } from "../../units/dimension.js";
 import { inUnit } from "../../units/unit.js";
-import type { CautionTriggers, Change, Prediction, Provenance, ReportParameter, Rival, StudyReport } from "../input.js";
+import type {
+  CautionTriggers,
+  Change,
+  Figure,
+  Prediction,
+  Provenance,
+  ReportParameter,
+  Rival,
+  StudyReport,
+} from "../input.js";
 import { answerOf } from "./answer.js";
 import { dataQuality, findingsOf } from "./data.js";
 import { estimate, parameterEstimate, readingUnit } from "./estimate.js";
-import { curveFigures, type NamedFigure, vesselFigure } from "./figures.js";
+import { curveFigures, rivalFigures, vesselFigure } from "./figures.js";
+import { identifiabilityOf } from "./identifiability.js";
+import { residenceFigures } from "./residence-figures.js";
 import { testedFlows } from "./tested.js";
 import { traitsOf } from "./traits.js";
 
@@ -13,10 +24,13 @@ import { traitsOf } from "./traits.js";
 export function reportOf(
   result: StudyResult,
   provenance: Omit<Provenance, "seed">,
-): { report: StudyReport; figures: readonly NamedFigure[] } {
+): { report: StudyReport; figures: readonly Figure[] } {
   const best = result.ranking[0];
   const vessel = best && vesselFigure(best, result.study.trials);
   const curves = curveFigures(result);
+  const rivalCurves = rivalFigures(result);
+  const residence = result.residence && best ? residenceFigures(result.residence, best.rival.network.units.time) : [];
+  const identifiability = best?.fit ? identifiabilityOf(best) : { says: [], correlations: [], figures: [] };
   const { findings, notSupported } = findingsOf(result);
   const tested = testedFlows(result.study);
   const report: StudyReport = {
@@ -29,8 +43,10 @@ export function reportOf(
     notSupported,
     rivals: result.ranking.map((r, i) => rivalRow(r, i, result)),
     equals: equalsOf(result),
+    rivalCurves,
     parameters: best?.fit ? parametersOf(best) : [],
-    correlations: best?.fit ? correlationsOf(best) : [],
+    identifiability,
+    residence,
     predictions: result.predictions.filter((p) => p.rival === best?.rival).map(predictionRow),
     changes: changeRows(result),
     assumptions: assumptionsOf(result),
@@ -38,7 +54,8 @@ export function reportOf(
     tested: tested.lines,
     provenance: { ...provenance, seed: result.study.seed },
   };
-  return { report, figures: [...(vessel ? [vessel] : []), ...curves] };
+  const figures = [...(vessel ? [vessel] : []), ...curves, ...rivalCurves, ...identifiability.figures, ...residence];
+  return { report, figures };
 }
 
 function rivalRow(r: Ranked, place: number, result: StudyResult): Rival {
@@ -78,14 +95,6 @@ function parametersOf(best: Ranked): ReportParameter[] {
     const about = best.rival.network.names.find((n) => n.name === p.name)?.about;
     return { name: p.name, estimate: parameterEstimate(p), atBound: p.atBound, ...(about ? { about } : {}) };
   });
-}
-
-function correlationsOf(best: Ranked): StudyReport["correlations"] {
-  const { names, rows } = best.fit?.correlation ?? { names: [], rows: [] };
-  const pairs = names.flatMap((one, i) =>
-    names.slice(i + 1).map((other, j) => ({ one, other, value: rows[i][i + 1 + j] })),
-  );
-  return pairs.filter((p) => Number.isFinite(p.value)).sort((a, b) => Math.abs(b.value) - Math.abs(a.value));
 }
 
 function predictionRow(p: StudyResult["predictions"][number]): Prediction {

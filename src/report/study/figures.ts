@@ -1,7 +1,8 @@
-import { drawCurves } from "../../draw/curves.js";
-import { drawFit } from "../../draw/fit-curve.js";
+import { plotCurves } from "../../draw/curves.js";
+import { plotFit } from "../../draw/fit-curve.js";
 import { flowSheet } from "../../draw/flow-sheet.js";
 import { drawNetwork } from "../../draw/network.js";
+import { sheetTable } from "../../draw/sheet-table.js";
 import type { FittedReading } from "../../fit/result.js";
 import type { Trial } from "../../model/trial.js";
 import type { Ranked, StudyResult } from "../../study/result.js";
@@ -11,15 +12,11 @@ import { estimateWords } from "../digits.js";
 import type { Figure } from "../input.js";
 import { estimate } from "./estimate.js";
 import { intervalOf } from "./interval-of.js";
+import { residualFigure } from "./residual-figure.js";
 import { traitsOf } from "./traits.js";
 
-/** A figure with the name of the file that it is saved under. */
-export interface NamedFigure extends Figure {
-  readonly name: string;
-}
-
 /** The vessel as fitted: what the reader should look at is marked, what the fit moved bears its interval. */
-export function vesselFigure(ranked: Ranked, trials: readonly Trial[]): NamedFigure | undefined {
+export function vesselFigure(ranked: Ranked, trials: readonly Trial[]): Figure | undefined {
   const { plant, fit, rival } = ranked;
   if (!plant || !fit) return undefined;
   const units = plant.network.units.unitFor(dimensions.volume);
@@ -40,33 +37,38 @@ export function vesselFigure(ranked: Ranked, trials: readonly Trial[]): NamedFig
   return {
     name: "vessel",
     drawing: drawNetwork(sheet, { untitled: true }),
+    data: { table: sheetTable(sheet) },
     caption: `The vessel as fitted by '${rival.network.title}', at the flow of the file. Area is volume, width is flow; behind a volume what the fit leaves possible (95 %).`,
   };
 }
 
-/** Measured against fitted of the best rival, one figure a trial; then all rivals over the same points. */
-export function curveFigures(result: StudyResult): NamedFigure[] {
+/** Measured against fitted of the best rival, and what is left between them, for every trial. */
+export function curveFigures(result: StudyResult): Figure[] {
   const best = result.ranking[0];
-  if (!best?.fit) return [];
-  const { fit } = best;
+  const { fit } = best ?? {};
+  if (!fit) return [];
   return result.study.trials.flatMap((trial, k) => {
     const readings = fit.readings.filter((r) => r.trial === trial.title);
     if (readings.length === 0) return [];
     const { time } = best.rival.network.units;
     const start = trial.injections[0]?.start ?? 0;
-    return [fitFigure(trial, readings, time, start, k), ...rivalFigure(result, trial, readings[0], time, start, k)];
+    return [fitFigure(trial, readings, time, start, k), residualFigure(fit, trial, readings, time, k)];
   });
 }
 
-function fitFigure(
-  trial: Trial,
-  readings: readonly FittedReading[],
-  time: Unit,
-  start: number,
-  k: number,
-): NamedFigure {
+/** All rivals over the points of the first reading of every trial. */
+export function rivalFigures(result: StudyResult): Figure[] {
+  const best = result.ranking[0];
+  return result.study.trials.flatMap((trial, k) => {
+    const measured = best?.fit?.readings.find((r) => r.trial === trial.title);
+    if (!measured) return [];
+    return rivalFigure(result, trial, measured, best.rival.network.units.time, trial.injections[0]?.start ?? 0, k);
+  });
+}
+
+function fitFigure(trial: Trial, readings: readonly FittedReading[], time: Unit, start: number, k: number): Figure {
   const unit = readings[0].unit;
-  const drawing = drawFit(
+  const made = plotFit(
     {
       title: trial.title,
       timeUnit: time.name,
@@ -88,7 +90,7 @@ function fitFigure(
   );
   return {
     name: `fit-${k + 1}`,
-    drawing,
+    ...made,
     caption: `${trial.title}: measured points, the curve fitted to all trials at once, and what is left between them. Time counts from the injection.`,
   };
 }
@@ -112,7 +114,7 @@ function rivalFigure(
   time: Unit,
   start: number,
   k: number,
-): NamedFigure[] {
+): Figure[] {
   const fitted = result.ranking.flatMap((r) => {
     const own = r.fit?.readings.find((x) => x.trial === trial.title && x.at === measured.at);
     return own ? [{ r, own }] : [];
@@ -120,7 +122,7 @@ function rivalFigure(
   if (fitted.length < 2) return [];
   const x = measured.time.map((t) => inUnit(t - start, time));
   const shown = (values: Float64Array) => values.map((c) => inUnit(c, measured.unit));
-  const drawing = drawCurves(
+  const made = plotCurves(
     {
       title: `${trial.title}: rivals`,
       x: `time, ${time.name}`,
@@ -133,7 +135,7 @@ function rivalFigure(
   return [
     {
       name: `rivals-${k + 1}`,
-      drawing,
+      ...made,
       caption: `${trial.title}: every network fitted to the same points, on a logarithmic axis.`,
     },
   ];

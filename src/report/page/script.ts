@@ -1,0 +1,181 @@
+/**
+ * The script of a report page, as source: reads values out under the pointer and the arrow keys, saves figures as SVG and
+ * their numbers as CSV. It needs nothing but the page; without it the page says the same, less handily.
+ */
+export const reportScript = String.raw`
+"use strict";
+(() => {
+const svgName = document.querySelector("svg").namespaceURI;
+const number = new Intl.NumberFormat("en", { maximumSignificantDigits: 4, useGrouping: false });
+const say = (v) => {
+  const size = Math.abs(v);
+  const words = size !== 0 && (size < 1e-3 || size >= 1e6) ? v.toExponential(3) : number.format(v);
+  return words.replace("-", "\u2212");
+};
+
+let hinted = false;
+for (const figure of document.querySelectorAll("figure")) {
+  const holder = figure.querySelector(".drawing");
+  const source = figure.querySelector("script");
+  if (!holder) continue;
+  const data = source ? JSON.parse(source.textContent) : undefined;
+  const name = data ? data.name : figure.dataset.name || "figure";
+  const tools = document.createElement("div");
+  tools.className = "tools";
+  tools.append(button("Save as SVG", () => save(name + ".svg", "image/svg+xml", standAlone(holder.querySelector("svg")))));
+  if (data) tools.append(button("Save data as CSV", () => save(name + ".csv", "text/csv", csv(data))));
+  figure.append(tools);
+  if (data && data.plots.length > 0) readable(tools, holder, data);
+}
+
+function button(words, act) {
+  const made = document.createElement("button");
+  made.type = "button";
+  made.textContent = words;
+  made.addEventListener("click", act);
+  return made;
+}
+
+function save(name, type, content) {
+  const link = document.createElement("a");
+  link.href = URL.createObjectURL(new Blob([content], { type }));
+  link.download = name;
+  link.click();
+  setTimeout(() => URL.revokeObjectURL(link.href), 10000);
+}
+
+/** A drawing with the page's shared style in fixed light colours, so that any program can show it. */
+function standAlone(svg) {
+  const copy = svg.cloneNode(true);
+  for (const mark of copy.querySelectorAll(".readout")) mark.remove();
+  const shared = document.querySelector("svg[aria-hidden] style").textContent;
+  const light = new Map(Array.from(/\{([^}]*)\}/.exec(shared)[1].matchAll(/(--bm-\w+):([^;]+)/g), (m) => [m[1], m[2]]));
+  const rules = shared
+    .replace(/^\.bm\{[^}]*\}@media[^{]*\{[^}]*\}\}/, "")
+    .replace(/var\((--bm-\w+)\)/g, (whole, key) => light.get(key) || whole);
+  const style = document.createElementNS(svgName, "style");
+  style.textContent = rules;
+  const definitions = document.querySelector("svg[aria-hidden] defs").cloneNode(true);
+  copy.querySelector("desc").after(style, definitions);
+  return new XMLSerializer().serializeToString(copy) + "\n";
+}
+
+function csv(data) {
+  const cell = (v) => {
+    const words = v === null || v === undefined ? "" : String(v);
+    return /[",\n]/.test(words) ? '"' + words.replaceAll('"', '""') + '"' : words;
+  };
+  const rows = data.rows || table(data.columns.map((k) => data.numbers[k]));
+  return [data.head, ...rows].map((row) => row.map(cell).join(",")).join("\n") + "\n";
+}
+
+function table(columns) {
+  const length = Math.max(0, ...columns.map((c) => c.length));
+  return Array.from({ length }, (_, k) => columns.map((c) => c[k]));
+}
+
+/** Lets pointer and arrow keys walk along the curves of a figure. */
+function readable(tools, holder, data) {
+  const svg = holder.querySelector("svg");
+  const mark = document.createElementNS(svgName, "g");
+  mark.setAttribute("class", "readout");
+  svg.append(mark);
+  const told = document.createElement("span");
+  told.className = "told";
+  told.setAttribute("role", "status");
+  const rest = hinted ? "" : "Point at a curve, or focus it and use the arrow keys, to read values.";
+  hinted = true;
+  told.textContent = rest;
+  tools.append(told);
+  holder.tabIndex = 0;
+  holder.setAttribute("role", "group");
+  holder.setAttribute("aria-label", (svg.querySelector("title").textContent || "Curve") + ": arrow keys read the values");
+  let at = { plot: 0, point: -1 };
+
+  const show = (plot, point) => {
+    const p = data.plots[plot];
+    const xs = data.numbers[p.series[0].x];
+    at = { plot, point: Math.min(xs.length - 1, Math.max(0, point)) };
+    const x = xs[at.point];
+    if (x === null) return;
+    const left = px(p.x, x, p.box[0], p.box[2]);
+    mark.replaceChildren(shape("line", { x1: left, x2: left, y1: p.box[1], y2: p.box[1] + p.box[3], class: "leader" }));
+    const values = [];
+    for (const s of p.series) {
+      const own = data.numbers[s.x];
+      const k = own === xs ? at.point : nearest(own, x);
+      const y = data.numbers[s.y][k];
+      if (y === null || y === undefined) continue;
+      values.push(s.label + " " + say(y));
+      const up = px(p.y, y, 0, p.box[3]);
+      if (up >= -1 && up <= p.box[3] + 1)
+        mark.append(shape("circle", { cx: px(p.x, own[k], p.box[0], p.box[2]), cy: p.box[1] + p.box[3] - up, r: 3.5, class: "value" }));
+    }
+    const [quantity, unit] = parted(p.x.words);
+    told.textContent = (p.label ? p.label + ", " : "") + quantity + " " + say(x) + " " + unit + ": " + values.join(", ") + " (" + p.y.words + ")";
+  };
+  const clear = () => {
+    mark.replaceChildren();
+    told.textContent = rest;
+    at = { plot: at.plot, point: -1 };
+  };
+
+  holder.addEventListener("pointermove", (e) => {
+    const matrix = svg.getScreenCTM();
+    if (!matrix) return;
+    const spot = new DOMPoint(e.clientX, e.clientY).matrixTransform(matrix.inverse());
+    const plot = data.plots.findIndex((p) => spot.x >= p.box[0] - 4 && spot.x <= p.box[0] + p.box[2] + 4 && spot.y >= p.box[1] - 10 && spot.y <= p.box[1] + p.box[3] + 90);
+    if (plot < 0) return clear();
+    const p = data.plots[plot];
+    const share = Math.min(1, Math.max(0, (spot.x - p.box[0]) / p.box[2]));
+    const x = p.x.log ? p.x.from * (p.x.to / p.x.from) ** share : p.x.from + share * (p.x.to - p.x.from);
+    show(plot, nearest(data.numbers[p.series[0].x], x));
+  });
+  holder.addEventListener("pointerleave", clear);
+  holder.addEventListener("blur", clear);
+  holder.addEventListener("keydown", (e) => {
+    const length = data.numbers[data.plots[at.plot].series[0].x].length;
+    const far = Math.max(2, Math.round(length / 20));
+    const to = { ArrowRight: at.point + 1, ArrowLeft: at.point < 0 ? length - 1 : at.point - 1, PageDown: at.point + far, PageUp: at.point - far, Home: 0, End: length - 1 }[e.key];
+    if (to !== undefined) show(at.plot, to);
+    else if (e.key === "ArrowDown" || e.key === "ArrowUp") {
+      const step = e.key === "ArrowDown" ? 1 : data.plots.length - 1;
+      show((at.plot + step) % data.plots.length, Math.max(0, at.point));
+    } else if (e.key === "Escape") clear();
+    else return;
+    e.preventDefault();
+  });
+}
+
+function parted(words) {
+  const cut = words.lastIndexOf(", ");
+  return cut < 0 ? [words, ""] : [words.slice(0, cut), words.slice(cut + 2)];
+}
+
+/** Where a value lies along an axis that begins at start and is so long. */
+function px(axis, value, start, length) {
+  const share = axis.log
+    ? (Math.log(value) - Math.log(axis.from)) / (Math.log(axis.to) - Math.log(axis.from))
+    : (value - axis.from) / (axis.to - axis.from);
+  return start + share * length;
+}
+
+/** The index of the number nearest to x in a list that rises. */
+function nearest(list, x) {
+  let low = 0;
+  let high = list.length - 1;
+  while (high - low > 1) {
+    const middle = (low + high) >> 1;
+    if (list[middle] <= x) low = middle;
+    else high = middle;
+  }
+  return x - list[low] <= list[high] - x ? low : high;
+}
+
+function shape(kind, attributes) {
+  const made = document.createElementNS(svgName, kind);
+  for (const [key, value] of Object.entries(attributes)) made.setAttribute(key, value);
+  return made;
+}
+})();
+`.trim();

@@ -1,0 +1,28 @@
+import { atDecimals, chance } from "../digits.js";
+import { figure, type Html, list, paragraph, section, table } from "../html.js";
+import type { StudyReport } from "../input.js";
+
+/** Which networks were tried, how they rank, and which cannot be told apart. */
+export function rivalsSection({ rivals, equals, rivalCurves }: StudyReport): Html {
+  const best = Math.min(...rivals.map((r) => r.aicc));
+  const rows = rivals.map((r) => [
+    r.network,
+    String(r.freeParameters),
+    atDecimals(r.aicc - best, 1),
+    chance(r.weight),
+    r.verdict,
+  ]);
+  const columns = [
+    { head: "network" },
+    { head: "free parameters", number: true },
+    { head: "AICc above the best", number: true },
+    { head: "weight", number: true },
+    { head: "why" },
+  ];
+  const told = equals.length > 0 ? [paragraph("These data cannot tell apart:"), list(equals)] : [];
+  return section("rivals", "Rival networks", [
+    table("Ranked by the small-sample Akaike criterion", columns, rows),
+    ...told,
+    ...rivalCurves.map(figure),
+  ]);
+}

@@ -1,0 +1,170 @@
+import { readFileSync } from "node:fs";
+import type { Download, Page } from "playwright-core";
+import { describe, expect, test } from "vitest";
+import { writeReport } from "../../src/report/report.js";
+import { demo } from "../report/demo.js";
+import { describeInBrowser } from "./browser.js";
+import { faintWords } from "./contrast.js";
+
+/** Sheets of paper less the margins of the page's style, px at 96 per inch. */
+const sheets = {
+  A4: { width: ((210 - 30) / 25.4) * 96, height: ((297 - 32) / 25.4) * 96 },
+  Letter: { width: ((215.9 - 30) / 25.4) * 96, height: ((279.4 - 32) / 25.4) * 96 },
+} as const;
+
+describeInBrowser("the report in a browser", ({ open }) => {
+  const html = writeReport(demo);
+
+  describe.each(["light", "dark"] as const)("%s", (scheme) => {
+    test("opens without complaints or requests, with readable words", async () => {
+      const { page, complaints, requests } = await open(html, { scheme });
+      expect(await page.title()).toBe(demo.title);
+      expect(await faintWords(page)).toEqual([]);
+      expect(complaints).toEqual([]);
+      expect(requests).toEqual([]);
+      const paper = await page.evaluate<string>("getComputedStyle(document.body).backgroundColor");
+      expect(paper).toBe(scheme === "light" ? "rgb(255, 255, 255)" : "rgb(16, 24, 27)");
+    });
+  });
+
+  test.each([360, 1600])("needs no sideways scrolling at %d px", async (width) => {
+    const { page } = await open(html, { width });
+    expect(await page.evaluate<number>("document.documentElement.scrollWidth")).toBeLessThanOrEqual(width);
+    // A drawing that is wider than the screen scrolls by itself, so that its words stay readable.
+    const sizes = await page.evaluate<number[]>(
+      `[...document.querySelectorAll("figure text")].map((t) => t.getBoundingClientRect().height)`,
+    );
+    expect(Math.min(...sizes)).toBeGreaterThan(7.5);
+  });
+
+  test("every picture has a title and a description", async () => {
+    const { page } = await open(html);
+    const drawings = await page.evaluate<[string, string, string][]>(
+      `[...document.querySelectorAll("figure svg")].map((s) => [s.getAttribute("role"), s.querySelector("title").textContent, s.querySelector("desc").textContent])`,
+    );
+    expect(drawings.length).toBeGreaterThan(6);
+    for (const [role, title, says] of drawings) {
+      expect(role).toBe("img");
+      expect(title.length).toBeGreaterThan(3);
+      expect(says.length).toBeGreaterThan(10);
+    }
+  });
+
+  test.each(["A4", "Letter"] as const)("prints on %s with no figure cut", async (format) => {
+    const { width, height } = sheets[format];
+    const { page } = await open(html, { width: Math.floor(width) });
+    const pdf = await page.pdf({ format, preferCSSPageSize: false });
+    expect(pdf.subarray(0, 5).toString()).toBe("%PDF-");
+    expect(pdf.toString("latin1")).toMatch(/\/Type\s*\/Page\b/);
+    await page.emulateMedia({ media: "print" });
+    const boxes = await page.evaluate<{ left: number; right: number; height: number; breaks: string }[]>(
+      `[...document.querySelectorAll("figure")].map((f) => { const { left, right } = f.querySelector("svg").getBoundingClientRect(); return { left, right, height: f.getBoundingClientRect().height, breaks: getComputedStyle(f).breakInside }; })`,
+    );
+    for (const b of boxes) {
+      expect(b.left).toBeGreaterThanOrEqual(0);
+      expect(b.right).toBeLessThanOrEqual(width + 0.5);
+      // As it fits on one sheet and may not be broken, no figure is cut between two.
+      expect(b.height).toBeLessThan(height);
+      expect(b.breaks).toBe("avoid");
+    }
+    const tables = await page.evaluate<number[]>(
+      `[...document.querySelectorAll("table")].map((t) => t.getBoundingClientRect().right)`,
+    );
+    expect(Math.max(...tables)).toBeLessThanOrEqual(width + 0.5);
+    expect(await page.evaluate<number>(`document.querySelectorAll("nav, .tools").length`)).toBeGreaterThan(1);
+    expect(await page.locator("nav").isVisible()).toBe(false);
+    expect(await page.locator(".tools").first().isVisible()).toBe(false);
+  });
+
+  test("the answer fills no more than half a page", async () => {
+    const { page } = await open(html, { width: Math.floor(sheets.A4.width) });
+    await page.emulateMedia({ media: "print" });
+    const box = await page.locator(".answer").boundingBox();
+    expect((box?.y ?? 0) + (box?.height ?? 0)).toBeLessThan(sheets.A4.height / 2);
+  });
+
+  const fit = "#figure-fit-1";
+  const told = async (page: Page): Promise<string> => (await page.locator(`${fit} .told`).textContent()) ?? "";
+
+  test("the pointer reads values off the curve", async () => {
+    const { page, complaints } = await open(html);
+    const drawing = page.locator(`${fit} svg`);
+    await drawing.scrollIntoViewIfNeeded();
+    const box = (await drawing.boundingBox())!;
+    await page.mouse.move(box.x + box.width * 0.5, box.y + box.height * 0.4);
+    const said = /time ([\d.]+) min: measured ([\d.e\u2212-]+), fitted ([\d.e\u2212-]+)/.exec(await told(page));
+    expect(said).not.toBeNull();
+    const k = 4 * Math.round(Number(said![1]) / 4);
+    // The demo's curve: 0.05 exp(-(t - 15)/76) from 15 min on.
+    expect(Number(said![3].replace("\u2212", "-"))).toBeCloseTo(0.05 * Math.exp(-(k - 15) / 76), 5);
+    expect(await page.locator(`${fit} .readout circle`).count()).toBe(2);
+    await page.mouse.move(box.x + 1, 1);
+    expect(await page.locator(`${fit} .readout *`).count()).toBe(0);
+    expect(complaints).toEqual([]);
+  });
+
+  test("the arrow keys walk along it, and what they read is announced", async () => {
+    const { page } = await open(html);
+    await page.locator(`${fit} .drawing`).focus();
+    await page.keyboard.press("Home");
+    expect(await told(page)).toContain("time 0 min");
+    await page.keyboard.press("ArrowRight");
+    expect(await told(page)).toContain("time 4 min");
+    await page.keyboard.press("End");
+    expect(await told(page)).toContain("time 356 min");
+    await page.keyboard.press("ArrowRight");
+    expect(await told(page)).toContain("time 356 min");
+    await page.keyboard.press("Escape");
+    expect(await page.locator(`${fit} .readout *`).count()).toBe(0);
+    expect(await page.locator(`${fit} .told`).getAttribute("role")).toBe("status");
+    expect(await page.locator(`${fit} .drawing`).getAttribute("aria-label")).toContain("arrow keys");
+  });
+
+  test("every figure is saved as a drawing that stands by itself", async () => {
+    const { page, requests } = await open(html);
+    const figures = await page.locator("figure").count();
+    expect(await page.getByRole("button", { name: "Save as SVG" }).count()).toBe(figures);
+    for (const name of ["vessel", "fit-1"]) {
+      const svg = await saved(page, `#figure-${name}`, "Save as SVG", `${name}.svg`);
+      expect(svg).toMatch(/^<svg[^>]*xmlns="http:\/\/www.w3.org\/2000\/svg"/);
+      expect(svg).toContain("<style>");
+      expect(svg).not.toMatch(/var\(|@media|readout/);
+      const alone = await open(`<!doctype html><title>x</title>${svg}`);
+      const paper = `getComputedStyle(document.querySelector("rect.paper")).fill`;
+      expect(await alone.page.evaluate<string>(paper)).toBe("rgb(255, 255, 255)");
+    }
+    expect(requests.filter((r) => !r.startsWith("blob:"))).toEqual([]);
+  });
+
+  test("its numbers are saved as a table", async () => {
+    const { page } = await open(html);
+    const rows = (await saved(page, fit, "Save data as CSV", "fit-1.csv")).trimEnd().split("\n");
+    expect(rows[0]).toBe('"time, min","measured, g/L","fitted, g/L","residual, g/L"');
+    expect(rows.length).toBe(91);
+    const [t, , fitted] = rows[20].split(",").map(Number);
+    expect(t).toBe(76);
+    expect(fitted).toBeCloseTo(0.05 * Math.exp(-61 / 76), 7);
+    const vessel = (await saved(page, "#figure-vessel", "Save data as CSV", "vessel.csv")).split("\n");
+    expect(vessel[0]).toBe("what,name,to,value,unit");
+    expect(vessel).toContain("body,bulk,,650,L");
+  });
+
+  test("has landmarks, one heading of the first rank, and names for what can be focused", async () => {
+    const { page } = await open(html);
+    for (const landmark of ["main", "nav", "header", "footer", "h1"]) {
+      expect(await page.locator(landmark).count()).toBe(1);
+    }
+    const nameless = await page.evaluate<number>(
+      `[...document.querySelectorAll("button, a, [tabindex]")].filter((e) => !(e.textContent.trim() || e.getAttribute("aria-label"))).length`,
+    );
+    expect(nameless).toBe(0);
+  });
+});
+
+async function saved(page: Page, figure: string, button: string, as: string): Promise<string> {
+  const wait = page.waitForEvent("download");
+  await page.locator(figure).getByRole("button", { name: button }).click();
+  const download: Download = await wait;
+  expect(download.suggestedFilename()).toBe(as);
+  return readFileSync(await download.path(), "utf8");
+}
