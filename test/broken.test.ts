@@ -102,6 +102,7 @@ test("every code that a file can show has a broken example, named by it", () => 
 /** What only a run can find, and the tests that show it. */
 const shownBy: Record<keyof typeof runEntries, string> = {
   "not-carried": "compile/carried.test.ts",
+  "too-many-passes": "simulate/closed.test.ts",
   "too-many-cells": "compile/carried.test.ts",
   "unknown-free": "fit/findings.test.ts",
   "nothing-to-fit": "fit/findings.test.ts",

@@ -14,7 +14,7 @@ import { splits } from "./splits.js";
 import { statedVolume } from "./stated-volume.js";
 import { checkSubjects } from "./statements.js";
 import { topologyOf } from "./topology.js";
-import { feedsAndOutlets, waysThrough } from "./ways.js";
+import { closedVessel, feedsAndOutlets, waysThrough } from "./ways.js";
 import { zoneInlets } from "./zones.js";
 
 const rules: readonly Rule[] = [
@@ -24,6 +24,7 @@ const rules: readonly Rule[] = [
   feedsAndOutlets,
   waysThrough,
   membersReached,
+  closedVessel,
   finiteValues,
   splits,
   exchanges,

@@ -1,5 +1,5 @@
 import type { Duty } from "../model/duty.js";
-import type { Network } from "../model/network.js";
+import { isClosed, type Network } from "../model/network.js";
 import type { Report } from "../problems/report.js";
 import { nearest } from "../text/nearest.js";
 import type { Span } from "../text/source.js";
@@ -8,6 +8,10 @@ import { sameKind } from "./same-kind.js";
 
 /** Does a duty fit a network: are its feeds, places and constants there, and does it say what every feed brings? */
 export function checkDuty(network: Network, duty: Duty, report: Report): void {
+  if (isClosed(network)) {
+    report("not-yet", duty.at, { what: `a duty in a closed vessel, which is a batch,` });
+    return;
+  }
   const { feeds, outlets, left } = placeNames(network);
   const look = (name: string, at: Span, wanted: string, among: readonly string[]): boolean => {
     if (among.includes(name) || (wanted.includes("compartment") && isCell(network, name))) return true;

@@ -1,3 +1,4 @@
+import { isClosed } from "../model/network.js";
 import type { Rule } from "./rule.js";
 
 const ratio = [0, 0, 0, 0, 0, 0, 0];
@@ -23,6 +24,8 @@ export const splits: Rule = (network, report, { env, say }) => {
       report("share-range", split.value.at, { name, to, value: say(share, ratio), recycle });
     }
     const rest = rests > 0;
+    // In a closed vessel fixed flows alone are right: they are held to what arrives when the flows are balanced.
+    if (isClosed(network) && streams.every((s) => s.split.is === "flow")) continue;
     if (fixed && !rest) report("rest-missing", toAt, { name });
     else if (within && (rest ? total > 1 + 1e-9 : Math.abs(total - 1) > 1e-9)) {
       report("share-sum", toAt, { name, total: say(total, ratio), rest });

@@ -1,4 +1,5 @@
 import { memberOf } from "../model/members.js";
+import { isClosed } from "../model/network.js";
 import type { Rule } from "./rule.js";
 
 /** What `checks:` speak of is there. */
@@ -18,6 +19,10 @@ export const checkSubjects: Rule = (network, report, { nearest }) => {
     },
   };
   for (const { what, of, ofAt } of network.checks) {
+    if (what === "mean-time" && isClosed(network)) {
+      report("closed-mean-time", ofAt, {});
+      continue;
+    }
     const { wanted, known } = subjects[what];
     if (what !== "mean-time" && memberOf(network.compartments, of)) continue;
     if (!known.includes(of)) report("unknown-place", ofAt, { name: of, wanted, nearest: nearest(of, known), known });

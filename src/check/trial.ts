@@ -1,5 +1,7 @@
-import type { Network } from "../model/network.js";
+import { memberOf } from "../model/members.js";
+import { isClosed, type Network } from "../model/network.js";
 import type { Injection, Reading, Trial } from "../model/trial.js";
+import type { Value } from "../model/value.js";
 import type { Report } from "../problems/report.js";
 import { nearest } from "../text/nearest.js";
 import { siUnit } from "../units/describe.js";
@@ -14,6 +16,9 @@ import { sameKind } from "./same-kind.js";
  */
 export function checkTrial(network: Network | undefined, trial: Trial, report: Report): void {
   if (network) checkPlaces(network, trial, report);
+  for (const { level, at } of trial.contents?.levels ?? []) {
+    for (const reading of trial.readings) if (!checkLevel(level, at, reading, report)) break;
+  }
   for (const injection of trial.injections) {
     for (const reading of trial.readings) if (!checkAmount(injection, reading, report)) break;
   }
@@ -29,6 +34,12 @@ function checkPlaces(network: Network, trial: Trial, report: Report): void {
   for (const { at, where } of trial.injections) {
     look(at, where, "feed or compartment", [...feeds, ...entered]);
   }
+  const closed = isClosed(network);
+  for (const { at, where, form } of trial.injections) {
+    const dosed = form.is === "pulse" || (form.is === "step" && !form.from && form.level.dimension[0] !== -3);
+    if (closed && !dosed) report("closed-inlet", where, { at });
+  }
+  for (const { of, at } of trial.contents?.levels ?? []) checkHolds(network, of, at, look, report);
   for (const { at, where } of trial.readings) {
     look(at, where, "outlet, compartment or feed", [...outlets, ...left, ...feeds]);
   }
@@ -38,6 +49,29 @@ function checkPlaces(network: Network, trial: Trial, report: Report): void {
     const constant = network.names.find((n) => n.role === "constant" && n.name === name);
     if (constant) sameKind(constant.value.dimension, value, report);
   }
+}
+
+type Look = (name: string, at: Parameters<Report>[1], wanted: string, among: readonly string[]) => void;
+
+/** Is there a place of that name that may hold tracer? */
+function checkHolds(network: Network, name: string, at: Parameters<Report>[1], look: Look, report: Report): void {
+  const { compartments, groups } = network;
+  const body = compartments.find((c) => c.name === name);
+  const holds = body && (body.kind.keys.volume !== undefined || body.zones !== undefined);
+  if (body && !(holds && body.kind.flows)) {
+    const why = body.kind.flows ? "it holds no liquid" : "the flow never reaches it, so nothing of it is seen";
+    report("contents-nothing", at, { name, why });
+  } else if (!body && name !== "all" && !memberOf(compartments, name)) {
+    look(name, at, "compartment or part", ["all", ...[...compartments, ...groups].map((p) => p.name)]);
+  }
+}
+
+/** Is what the vessel holds at the start what is read? True where it is. */
+function checkLevel(level: Value, at: Parameters<Report>[1], reading: Reading, report: Report): boolean {
+  if (reading.scale === "free" || sameDimension(level.dimension, reading.unit.dimension)) return true;
+  const amount = level.unit?.name || "a bare number";
+  report("contents-unit", at, { amount, at: reading.at, reading: reading.unit.name || "a bare number" });
+  return false;
 }
 
 /** Does what is put in make the kind of concentration that is read? True where it does. */

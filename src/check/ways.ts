@@ -1,9 +1,10 @@
-import type { Network } from "../model/network.js";
+import { isClosed, type Network } from "../model/network.js";
 import { type Graph, reachable, stronglyConnected } from "../numerics/graph.js";
 import type { Rule } from "./rule.js";
 
-/** Feeds and outlets exist. */
+/** Feeds and outlets exist, or neither does: then the vessel is closed. */
 export const feedsAndOutlets: Rule = (network, report) => {
+  if (isClosed(network) && network.compartments.some((c) => c.kind.flows)) return;
   if (network.feeds.length === 0) report("no-feed", network.at, {});
   if (network.outlets.length === 0) report("no-outlet", network.at, {});
 };
@@ -43,6 +44,25 @@ export const waysThrough: Rule = (network, report, { topology }) => {
   for (const o of network.outlets) {
     if (!wet[topology.index.get(o.name) as number]) report("outlet-dry", o.at, { name: o.name });
   }
+};
+
+/** A closed vessel hangs together, and what streams bring to a place has a way out. Flows are held to each other elsewhere. */
+export const closedVessel: Rule = (network, report, { topology }) => {
+  if (!isClosed(network)) return;
+  const flowing = network.compartments.filter((c) => c.kind.flows);
+  const entered = new Set(flowing.flatMap((c) => c.streams.map((s) => s.to)));
+  for (const { name, at, streams } of flowing) {
+    if (streams.length === 0 && entered.has(name)) report("no-way-out", at, { name, feed: false });
+  }
+  const { size, from, to } = topology.ways;
+  const bothWays = {
+    size,
+    from: [...Array.from(from), ...Array.from(to)],
+    to: [...Array.from(to), ...Array.from(from)],
+  };
+  const reached = reachable(bothWays, [topology.index.get(flowing[0]?.name ?? "") ?? 0]);
+  const apart = flowing.filter((c) => !reached[topology.index.get(c.name) as number]);
+  if (apart.length > 0) report("closed-apart", apart[0].at, { names: apart.map((c) => c.name), from: flowing[0].name });
 };
 
 /** By index in the topology: feeds, compartments, outlets. */

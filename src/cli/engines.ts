@@ -5,10 +5,10 @@ import { ode } from "../simulate/ode.js";
 import { type AnyEngine, engineFor } from "../simulate/trace.js";
 import type { SimulateOptions } from "./simulate-options.js";
 
-/** The engine by its name; `auto` is the one that suits the plant. */
-export function engineNamed(name: SimulateOptions["engine"], plant: Plant): AnyEngine {
+/** The engine by its name; `auto` is the one that suits the plant and the last time asked, s. */
+export function engineNamed(name: SimulateOptions["engine"], plant: Plant, until: number): AnyEngine {
   const named = { auto: undefined, exact, ode, laplace }[name];
-  return named ?? engineFor(plant);
+  return named ?? engineFor(plant, until);
 }
 
 /** An independent engine to check another by. */

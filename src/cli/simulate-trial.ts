@@ -2,7 +2,7 @@ import { checkTrial } from "../check/trial.js";
 import type { Plant } from "../compile/plant.js";
 import { productUnit } from "../data/clean.js";
 import { settingsOfDay } from "../fit/settings.js";
-import type { Network } from "../model/network.js";
+import { isClosed, type Network } from "../model/network.js";
 import type { Trial } from "../model/trial.js";
 import { parseTrial } from "../parse/trial.js";
 import { collector } from "../problems/report.js";
@@ -34,17 +34,17 @@ export function simulateTrial(network: Network, options: SimulateOptions, { inpu
   checkTrial(network, trial, report);
   inputs.accept(problems);
   const plant = plantAt(network, settingsOfDay(network, trial, settingsFrom(network, options.set)));
-  const origin = Math.min(...trial.injections.map((i) => i.start));
+  const starts = trial.injections.map((i) => i.start);
+  const origin = Math.min(...starts, ...(trial.contents ? [trial.contents.begins] : []));
   const clock = clockFrom(options, network.units.time, () => lastTime(plant, trial, origin));
   const wanted = trial.readings.map(() => ({ time: clock.si.map((t) => t + origin) }));
-  const engine = engineNamed(options.engine, plant);
+  const engine = engineNamed(options.engine, plant, clock.si[clock.si.length - 1]);
   const curves = trialResponse(plant, trial, wanted, engine);
   const beside = engineBeside(engine);
   const other = options.verify ? trialResponse(plant, trial, wanted, beside) : undefined;
   const difference = other && largestDifference(curves, other);
   const until = origin + clock.si[clock.si.length - 1];
   const balance = trialBalance(plant, trial, until, engine);
-  const places = placesOf(plant, trial);
   const spikes = trial.readings.map((r) => trialSpikes(plant, trial, r, until));
   if (options.output !== undefined) {
     const unit = trial.readings[0]?.unit.name || "1";
@@ -69,10 +69,10 @@ export function simulateTrial(network: Network, options: SimulateOptions, { inpu
   return {
     status: failed ? 3 : 0,
     text: blocks(
-      `${network.title}: ${trial.title}, ${clock.shown.length} times to ${formatNumber(clock.shown[clock.shown.length - 1])} ${clock.unit.name} after the injection (${engine.name})`,
+      `${network.title}: ${trial.title}, ${clock.shown.length} times to ${formatNumber(clock.shown[clock.shown.length - 1])} ${clock.unit.name} after the ${starts.includes(origin) ? "injection" : "start"} (${engine.name})`,
       readingsTable(trial, curves, clock),
       spikesText(trial, spikes, origin, clock),
-      `  residence time from ${trial.injections[0].at}\n${momentsTable(places, clock.unit)}`,
+      residenceText(plant, trial, clock),
       balance ? balanceLine(balance.balance, balance.unit) : "",
       difference === undefined ? "" : `  engines: they differ by at most ${formatNumber(difference, 2)} of the peak`,
       options.output === undefined ? "" : `  curves: ${options.output}`,
@@ -90,7 +90,7 @@ export function simulateTrial(network: Network, options: SimulateOptions, { inpu
           area: quantity(s.area, perTime(r.unit, clock.unit)),
         })),
       })),
-      moments: places.map((p) => momentsJson(p, clock.unit)),
+      moments: placesOf(plant, trial).map((p) => momentsJson(p, clock.unit)),
       balance: balance ? balanceJson(balance.balance, balance.unit) : null,
       ...(difference === undefined
         ? {}
@@ -105,19 +105,31 @@ export function simulateTrial(network: Network, options: SimulateOptions, { inpu
 function lastTime(plant: Plant, trial: Trial, origin: number): number {
   const ends = trial.readings.map((r) => r.series?.time.reduce((m, t) => Math.max(m, t), 0) ?? 0);
   const end = Math.max(0, ...ends) - origin;
-  return end > 0
-    ? end
-    : Math.max(...trial.injections.map((i) => i.start - origin + i.lasting + settlingTime(plant, i.at)));
+  if (end > 0) return end;
+  if (isClosed(plant)) throw new UsageError("a closed vessel's curve has no end: say how long with --until or --times");
+  const entries = trial.injections.map((i) => ({ after: i.start - origin + i.lasting, into: i.at }));
+  const begun = trial.contents
+    ? plant.feeds.map((f) => ({ after: trial.contents!.begins - origin, into: f.name }))
+    : [];
+  return Math.max(...[...entries, ...begun].map(({ after, into }) => after + settlingTime(plant, into)));
+}
+
+/** Residence time at every reading; in a closed vessel there is none, and without an injection none was asked for. */
+function residenceText(plant: Plant, trial: Trial, clock: Clock): string {
+  if (isClosed(plant)) return "  closed: nothing leaves, so there is no mean time";
+  const from = trial.injections[0]?.at;
+  return from === undefined ? "" : `  residence time from ${from}\n${momentsTable(placesOf(plant, trial), clock.unit)}`;
 }
 
 /** Residence time from the first injection to every place that the trial reads. */
 function placesOf(plant: Plant, trial: Trial) {
-  const all = moments(plant, plant.entry.get(trial.injections[0].at) as number);
+  const from = trial.injections[0]?.at;
+  if (from === undefined || isClosed(plant)) return [];
+  const all = moments(plant, plant.entry.get(from) as number);
   return [...new Set(trial.readings.map((r) => r.at))].map((at) => {
     const node = plant.exit.get(at) as number;
     const { inflow } = plant.nodes[node];
-    const flow =
-      plant.feeds.find((f) => f.name === trial.injections[0].at)?.flow ?? plant.feeds.reduce((s, f) => s + f.flow, 0);
+    const flow = plant.feeds.find((f) => f.name === from)?.flow ?? plant.feeds.reduce((s, f) => s + f.flow, 0);
     return { at, moments: all[node], area: inflow > 0 ? (all[node].share * flow) / inflow : 0 };
   });
 }

@@ -1,4 +1,4 @@
-import type { Network } from "../model/network.js";
+import { isClosed, type Network } from "../model/network.js";
 import { settlingTime, tracerResponse } from "../simulate/tracer.js";
 import { formatNumber, formatQuantity } from "../units/format.js";
 import { inUnit } from "../units/unit.js";
@@ -7,7 +7,7 @@ import { curvesCsv } from "./csv.js";
 import { engineBeside, engineNamed, largestDifference } from "./engines.js";
 import { pure } from "./json/quantity.js";
 import { tracerJson } from "./json/tracer.js";
-import type { Outcome } from "./outcome.js";
+import { type Outcome, UsageError } from "./outcome.js";
 import { plantAt } from "./plant.js";
 import { requirePlace, settingsFrom } from "./settings.js";
 import type { SimulateOptions } from "./simulate-options.js";
@@ -23,23 +23,33 @@ export function simulateUnit(network: Network, options: SimulateOptions, { io }:
   const plant = plantAt(network, settingsFrom(network, options.set));
   requirePlace(into, plant.entry, `--${form}`);
   for (const name of options.at ?? []) requirePlace(name, plant.exit, "--at");
-  const clock = clockFrom(options, network.units.time, () => settlingTime(plant, into));
-  const at = options.at ?? [];
-  const engine = engineNamed(options.engine, plant);
+  const closed = isClosed(plant);
+  if (closed && form === "step") throw new UsageError("nothing enters a closed vessel: use --pulse with a place in it");
+  const clock = clockFrom(options, network.units.time, () => {
+    if (closed) throw new UsageError("a closed vessel's curve has no end: say how long with --until or --times");
+    return settlingTime(plant, into);
+  });
+  const everywhere = closed ? network.compartments.map((c) => c.name).filter((name) => plant.exit.has(name)) : [];
+  const at = options.at ?? everywhere;
+  const engine = engineNamed(options.engine, plant, clock.si[clock.si.length - 1]);
   const run = (by: typeof engine) => tracerResponse(plant, { at: into, form }, clock.si, { engine: by, at });
   const result = run(engine);
   const other = options.verify ? run(engineBeside(engine)) : undefined;
   const difference = other && largestDifference(...curvesOf(result, other));
-  const valueUnit = form === "pulse" ? perUnit(clock.unit) : pureNumber;
+  const valueUnit = form === "pulse" && !closed ? perUnit(clock.unit) : pureNumber;
+  const areaUnit = closed ? clock.unit : pureNumber;
   if (options.output !== undefined) {
     const curves = result.readings.map((r) => ({
       at: r.at,
       time: clock.shown,
       value: r.value.map((v) => inUnit(v, valueUnit)),
-      cumulative: r.cumulative,
-      spikes: r.spikes.map((s) => ({ time: inUnit(s.time, clock.unit), area: s.area })),
+      cumulative: r.cumulative.map((v) => inUnit(v, areaUnit)),
+      spikes: r.spikes.map((s) => ({ time: inUnit(s.time, clock.unit), area: inUnit(s.area, areaUnit) })),
     }));
-    io.write(options.output, curvesCsv(curves, { time: clock.unit.name, value: valueUnit.name || "1", spike: "1" }));
+    io.write(
+      options.output,
+      curvesCsv(curves, { time: clock.unit.name, value: valueUnit.name || "1", spike: areaUnit.name || "1" }),
+    );
   }
   const notes = [
     ...(result.stopped ? [`not converged: ${result.stopped}; what was found before is printed`] : []),
@@ -50,8 +60,8 @@ export function simulateUnit(network: Network, options: SimulateOptions, { io }:
     status: result.stopped || other?.stopped ? 3 : 0,
     text: blocks(
       `${network.title}: a unit ${form} into ${into}, ${clock.shown.length} times to ${formatNumber(last)} ${clock.unit.name} (${result.engine})`,
-      momentsTable(result.readings, clock.unit),
-      spikesText(result.readings, clock.unit),
+      closed ? noMean : momentsTable(result.readings, clock.unit),
+      spikesText(result.readings, clock.unit, areaUnit),
       balanceLine(result.balance, balanceUnit(form, clock.unit)),
       peaks(result.readings, clock.shown, valueUnit.factor, valueUnit.name, clock.unit.name),
       difference === undefined || !other
@@ -61,7 +71,7 @@ export function simulateUnit(network: Network, options: SimulateOptions, { io }:
     ),
     json: {
       ok: !result.stopped,
-      ...tracerJson(result, clock, form),
+      ...tracerJson(result, clock, valueUnit, areaUnit, balanceUnit(form, clock.unit)),
       ...(difference === undefined || !other
         ? {}
         : { verify: { engines: [result.engine, other.engine], largestDifference: pure(difference).value } }),
@@ -71,6 +81,9 @@ export function simulateUnit(network: Network, options: SimulateOptions, { io }:
     notes,
   };
 }
+
+/** Why a closed vessel has no table of moments. */
+const noMean = "  closed: nothing leaves, so there is no mean time; values are c V / amount, 1 where all is mixed";
 
 type Result = ReturnType<typeof tracerResponse>;
 

@@ -1,5 +1,6 @@
 import { kindValues } from "../compile/evaluate.js";
 import type { Plant } from "../compile/plant.js";
+import { isClosed } from "../model/network.js";
 
 /** One body of a vessel as tables show it. SI. */
 export interface Body {
@@ -44,9 +45,10 @@ export function vesselOf(plant: Plant): {
   active: number;
   dead: number;
   feed: number;
-  meanTime: number;
+  /** Undefined in a closed vessel. */
+  meanTime: number | undefined;
 } {
   const feed = plant.feeds.reduce((sum, f) => sum + f.flow, 0);
   const { total, active, dead } = plant.volume;
-  return { volume: total, active, dead, feed, meanTime: active / feed };
+  return { volume: total, active, dead, feed, meanTime: isClosed(plant) ? undefined : active / feed };
 }

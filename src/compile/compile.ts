@@ -1,5 +1,5 @@
 import { memberOf } from "../model/members.js";
-import type { Network } from "../model/network.js";
+import { isClosed, type Network } from "../model/network.js";
 import { backEdges, stronglyConnected } from "../numerics/graph.js";
 import type { Problem } from "../problems/problem.js";
 import { collector } from "../problems/report.js";
@@ -61,8 +61,10 @@ function plantOf(network: Network, env: Float64Array, volumes: Float64Array, flo
     inflow[i] += flows.through[i];
   });
   const total = volumes.reduce((sum, v) => sum + v, 0);
+  // What lies still in a closed vessel is no dead volume: a flask is all there is.
+  const closed = isClosed(network);
   let active = 0;
-  for (let i = 0; i < nodes.size; i++) if (inflow[i] > 0) active += nodes.volume[i];
+  for (let i = 0; i < nodes.size; i++) if (closed || inflow[i] > 0) active += nodes.volume[i];
   let made: Plant["nodes"] | undefined;
   let groups: Plant["groups"] | undefined;
   let streams: PlantStream[] | undefined;
@@ -109,7 +111,7 @@ function plantOf(network: Network, env: Float64Array, volumes: Float64Array, flo
 function streamsOf(network: Network, env: Float64Array, flows: Flows): PlantStream[] {
   const names = [...network.feeds, ...network.compartments, ...network.outlets].map((p) => p.name);
   const edges = { size: names.length, from: flows.streams.map((s) => s.from), to: flows.streams.map((s) => s.to) };
-  const back = backEdges(edges, network.feeds.keys());
+  const back = backEdges(edges, isClosed(network) ? [0] : network.feeds.keys());
   const zones = new Map(network.compartments.flatMap((c) => (c.zones ? [[c.name, c.zones] as const] : [])));
   // The only port of a body needs no name.
   const port = (name: string, suffix: string | undefined, side: "inlets" | "outlets"): string =>

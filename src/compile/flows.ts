@@ -1,5 +1,5 @@
 import type { ZoneTable } from "../compartments/zone-table.js";
-import type { Network, Stream } from "../model/network.js";
+import { isClosed, type Network, type Stream } from "../model/network.js";
 import { type Adjacency, adjacency, stronglyConnected } from "../numerics/graph.js";
 import { factor, solve } from "../numerics/lu.js";
 import type { Report } from "../problems/report.js";
@@ -79,10 +79,12 @@ export function balanceFlows(
   const solved = solveThrough(plan, { share, fixed }, supply);
   if ("stuck" in solved) {
     const group = [...solved.stuck].sort((a, b) => a - b).map((i) => places[i]);
-    report("loop-unbounded", group[0].at, { names: group.map((p) => p.name) });
+    const names = group.map((p) => p.name);
+    report(isClosed(network) ? "closed-flow-open" : "loop-unbounded", group[0].at, { names });
     return undefined;
   }
   const { through } = solved;
+  if (!fixedFlowsBalance(network, env, through, report, say)) return undefined;
   const streams = plan.streams.map((stream, k): SolvedStream => {
     // A rest that is zero but for rounding is zero.
     const part = share[k] * through[from[k]];
@@ -93,6 +95,28 @@ export function balanceFlows(
   if (!allPositive(streams, through, places, report, say)) return undefined;
   const zoned = zoneFlows(network, streams, report, say);
   return zoned && { through, streams, zoned };
+}
+
+/** Where a place of a closed vessel sends fixed flows alone, just that must arrive. */
+function fixedFlowsBalance(
+  network: Network,
+  env: Float64Array,
+  through: Float64Array,
+  report: Report,
+  say: Say,
+): boolean {
+  let good = true;
+  network.compartments.forEach(({ name, streams, toAt }, i) => {
+    const flows = streams.flatMap(({ split }) => (split.is === "flow" ? [split.value.of(env)] : []));
+    if (flows.length === 0 || flows.length < streams.length) return;
+    const sends = flows.reduce((sum, q) => sum + q, 0);
+    const arrives = through[network.feeds.length + i];
+    if (Math.abs(arrives - sends) <= 1e-9 * Math.max(Math.abs(arrives), sends)) return;
+    good = false;
+    const [said, sent] = [arrives, sends].map((q) => say(q, dimensions.flow));
+    report("closed-unbalanced", toAt, { name, arrives: said, sends: sent });
+  });
+  return good;
 }
 
 interface Place {
@@ -124,6 +148,8 @@ function splitsPossible(network: Network, env: Float64Array, report: Report, say
       }
     }
     const open = streams.some(({ split }) => split.is === "rest" || split.is === "all") || streams.length === 0;
+    // In a closed vessel fixed flows may be all; whether they balance shows when they are solved.
+    if (isClosed(network) && streams.every(({ split }) => split.is === "flow")) continue;
     if (good && (open ? total > 1 + 1e-9 : Math.abs(total - 1) > 1e-9)) {
       refuse("share-sum", toAt, { name, total: say(total, dimensions.ratio), rest: open });
     }

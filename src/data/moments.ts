@@ -22,6 +22,12 @@ export function readMoments(trial: Trial, options: MomentsOptions = {}): Moments
   const findings: Finding[] = [];
   const notSupported: string[] = [];
   const readings: ReadingMoments[] = [];
+  const without = options.closed
+    ? "the vessel is closed: nothing leaves it, so it has no residence time; fit a network to its mixing"
+    : trial.contents || trial.injections.length === 0
+      ? "tracer was inside at the start, so the curve is no response to what was put in; fit a network to it"
+      : undefined;
+  if (without) return { readings, grade: gradeOf(findings, []), findings, notSupported: [without] };
   for (const reading of trial.readings) {
     const curve = cleanReading(trial, reading);
     if (curve) readings.push(readCurve(trial, reading, curve, options, findings, notSupported));

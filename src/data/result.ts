@@ -19,6 +19,8 @@ export interface MomentsOptions {
   readonly wayOut?: (at: string) => WayOut | undefined;
   /** Flow of each feed, m3/s. */
   readonly feeds?: ReadonlyMap<string, number>;
+  /** The vessel has neither feeds nor outlets. */
+  readonly closed?: boolean;
   readonly rule?: Rule;
   /** The unit that times are shown in; that of the reading's own where left out. */
   readonly timeUnit?: Unit;

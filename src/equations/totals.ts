@@ -1,4 +1,5 @@
 import type { Plant } from "../compile/plant.js";
+import { isClosed } from "../model/network.js";
 import { meanAges } from "../simulate/ages.js";
 import { dimensions } from "../units/dimension.js";
 import { formatQuantity } from "../units/format.js";
@@ -11,6 +12,10 @@ export function totals(plant: Plant, balances: readonly Balance[]): string {
   const flow = network.units.unitFor(dimensions.flow);
   const q = feeds.reduce((s, f) => s + f.flow, 0);
   const out = outlets.reduce((s, o) => s + o.flow, 0);
+  if (isClosed(plant)) {
+    const all = sum(balances.flatMap(heldIn));
+    return `The vessel is closed: nothing enters or leaves. Substance: $${all}$ stays what it is, which is the sum of all balances above; where all is mixed, the concentration is that amount over $V$.`;
+  }
   const lines = [
     `Liquid: $${sum(feeds.map((f) => throughFlow(f.name)))} = ${sum(outlets.map((o) => throughFlow(o.name)))}$, that is ${formatQuantity(q, flow, 6)} in and ${formatQuantity(out, flow, 6)} out.`,
     `Substance: $\\frac{d}{dt}\\left(${sum(balances.flatMap(heldIn))}\\right) = ${carried(feeds)} - ${outlets.length > 1 ? `\\left(${carried(outlets)}\\right)` : carried(outlets)}$, which is the sum of all balances above.`,

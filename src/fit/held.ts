@@ -94,6 +94,15 @@ function heldOfTrial(trial: Trial, k: number, env: Env): Held[] {
       ? heldValue(form.amount, k, `dose ${of}`, env, moves, (t, amount) => set(t, { ...form, amount }))
       : heldValue(form.level, k, `step ${of}`, env, moves, (t, level) => set(t, { ...form, level }));
   });
+  const levels = (trial.contents?.levels ?? []).flatMap(({ of: place, level }, i) =>
+    heldValue(level, k, `contents of ${place} ${of}`, env, {}, (t, v) => ({
+      ...t,
+      contents: t.contents && {
+        ...t.contents,
+        levels: t.contents.levels.map((one, j) => (j === i ? { ...one, level: v } : one)),
+      },
+    })),
+  );
   const lines = trial.readings.flatMap(({ line, at }, i) => {
     const set = (t: Trial, part: Partial<Reading["line"]>): Trial => ({
       ...t,
@@ -113,5 +122,5 @@ function heldOfTrial(trial: Trial, k: number, env: Env): Held[] {
       ),
     ];
   });
-  return [...flows, ...doses, ...lines];
+  return [...flows, ...doses, ...levels, ...lines];
 }

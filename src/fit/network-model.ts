@@ -3,8 +3,9 @@ import { evaluateNames } from "../compile/evaluate.js";
 import { Part, type Plant, type Settings } from "../compile/plant.js";
 import { type PlantSlope, PlantSlopes } from "../compile/plant-slopes.js";
 import { ValueSlopes } from "../compile/value-slopes.js";
-import type { Network } from "../model/network.js";
+import { isClosed, type Network } from "../model/network.js";
 import type { Trial } from "../model/trial.js";
+import { RefusedError } from "../problems/refused.js";
 import { trialResponse } from "../simulate/trial.js";
 import { hasSlopes, type Move, trialSlopes } from "../simulate/trial-slopes.js";
 import type { At, Direction, ForwardModel } from "./forward.js";
@@ -48,11 +49,19 @@ export function networkModel(network: Network): ForwardModel {
     respond(trial, values, wanted) {
       const plant = plantFor(trial, values);
       if (!plant) return undefined;
-      return hasSlopes(plant) ? trialSlopes(plant, trial, wanted, []).curves : trialResponse(plant, trial, wanted);
+      try {
+        return hasSlopes(plant, trial)
+          ? trialSlopes(plant, trial, wanted, []).curves
+          : trialResponse(plant, trial, wanted);
+      } catch (e) {
+        // Values with which tracer goes round a closed vessel too often are no better than an impossible vessel.
+        if (e instanceof RefusedError && isClosed(plant)) return undefined;
+        throw e;
+      }
     },
     slopes(trial, at, wanted, directions) {
       const plant = plantFor(trial, at.values);
-      if (!plant || !hasSlopes(plant)) return undefined;
+      if (!plant || !hasSlopes(plant, trial)) return undefined;
       const known: number[] = [];
       const moves = plantMoves(trial, at, plant, directions).flatMap((m, d): Move[] => {
         if (!m) return [];

@@ -31,7 +31,7 @@ export function blocksOf(trials: readonly Trial[]): Block[] {
   let from = 0;
   for (const [t, trial] of trials.entries()) {
     const starts = trial.injections.map((i) => i.start);
-    const origin = starts.length > 0 ? Math.min(...starts) : 0;
+    const origin = starts.length > 0 ? Math.min(...starts) : (trial.contents?.begins ?? 0);
     for (const [r, declared] of trial.readings.entries()) {
       const points = keptPoints(declared);
       if (points.time.length === 0) continue;

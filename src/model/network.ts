@@ -27,6 +27,10 @@ export interface Network {
   readonly units: UnitBook;
 }
 
+/** A vessel that nothing enters and nothing leaves: a flask, a loop on total return. */
+export const isClosed = ({ feeds, outlets }: { feeds: readonly unknown[]; outlets: readonly unknown[] }): boolean =>
+  feeds.length === 0 && outlets.length === 0;
+
 /** A name that has a value. `slot` is its index in `Network.names` and in an Env. */
 export interface Named {
   readonly name: string;

@@ -19,9 +19,19 @@ export interface Trial {
   /** Constants that the day set otherwise. */
   readonly with: ReadonlyMap<string, Value>;
   readonly injections: readonly Injection[];
+  /** Tracer that the vessel holds at the start. */
+  readonly contents?: Contents | undefined;
   readonly readings: readonly Reading[];
   /** How the trial's clock is written, for printing its times; undefined where times are elapsed. */
   readonly clock?: ClockFormat | undefined;
+}
+
+/** Concentrations in the vessel when it starts, s on the trial's clock. */
+export interface Contents {
+  readonly at: Span;
+  readonly begins: number;
+  /** By compartment, part, member or cell, or `all`; what is inside another name's place has the level of its own. */
+  readonly levels: readonly { readonly of: string; readonly at: Span; readonly level: Value }[];
 }
 
 /** What went in. `start` is in seconds on the trial's clock (that of its readings), `lasting` in seconds (0: at once). */

@@ -15,7 +15,7 @@ export function fastExchanges(plant: Plant, report: Report): void {
     for (const e of c.exchanges) {
       const flow = e.flow.of(plant.env);
       const passing = Math.max(broughtTo(plant, c.name), broughtTo(plant, e.partner)) || feed;
-      if (flow <= oneZone * passing) continue;
+      if (passing === 0 || flow <= oneZone * passing) continue; // a closed vessel has no measure for it
       report("exchange-fast", e.flow.at, {
         name: c.name,
         partner: e.partner,

@@ -6,6 +6,7 @@ import { beside } from "../read/paths.js";
 import { child, entriesOf, itemsOf, type MapNode, type Tree, textOf } from "../read/tree.js";
 import { type Dimension, dimensions } from "../units/dimension.js";
 import type { Unit } from "../units/unit.js";
+import { resolveContents } from "./contents.js";
 import { resolveInjection, signalNode } from "./injection.js";
 import { resolveReading } from "./reading.js";
 import { aboveZero } from "./sign.js";
@@ -38,25 +39,28 @@ export function resolveTrial(
   const inletTables = injectionNodes.map((node) => table(signalNode(node)));
   const tables = [...readTables, ...inletTables].filter((t) => t !== undefined);
   const clock = trialClock(tables);
+  const title = child(tree, "trial");
   if (!oneClock(tables, report)) return undefined;
 
   const onClock = (t: ResolvedTable | undefined): ResolvedTable | undefined => t && moved(t, -clock.originOf(t.clock));
   const injections = injectionNodes.map((node, i) =>
     resolveInjection(node, onClock(inletTables[i]), clock, free, report),
   );
-  const start = injections[0]?.start ?? 0;
-  const planned = plannedUnit(injections[0]?.form.is === "pulse" ? injections[0].form.amount : undefined);
+  const contents = resolveContents(child(tree, "contents"), clock, free, report);
+  const start = injections[0]?.start ?? contents?.begins ?? 0;
+  const dose = injections[0]?.form.is === "pulse" ? injections[0].form.amount : undefined;
+  const planned = plannedUnit(dose, contents?.levels[0]?.level);
+  if (injectionNodes.length === 0 && !child(tree, "contents")) report("nothing-put-in", title?.at ?? tree.at, {});
   const readings = readingNodes.map((node, i) => {
     const missing = child(node, "file") !== undefined && readTables[i] === undefined;
     const own = afterMidnight(onClock(readTables[i]), start, clock);
     const reading = resolveReading(node, own, clock, planned, report);
     return missing ? undefined : reading;
   });
-  const title = child(tree, "trial");
   const flows = values(child(tree, "flows"), dimensions.flow, scope, report);
   for (const flow of flows.values()) if (flow.uses.length === 0) aboveZero("the flow of a feed", flow, true, report);
   const whole = [...injections, ...readings].every((part) => part !== undefined);
-  if (!whole) return undefined;
+  if (!whole || (child(tree, "contents") && !contents)) return undefined;
   return {
     title: textOf(tree, "trial") ?? "",
     at: title?.at ?? tree.at,
@@ -66,6 +70,7 @@ export function resolveTrial(
     flows,
     with: values(child(tree, "with"), "any", scope, report),
     injections: injections.filter((part) => part !== undefined),
+    ...(contents ? { contents } : {}),
     readings: readings.filter((part) => part !== undefined),
     ...(clock.format ? { clock: clock.format } : {}),
   };
@@ -108,8 +113,9 @@ function afterMidnight(table: ResolvedTable | undefined, start: number, clock: T
   return last < start - 43_200 ? moved(table, 86_400) : table;
 }
 
-/** The unit of concentration that a planned reading is in: that of the dose in a liter. */
-function plannedUnit(amount: Value | undefined): Unit {
+/** The unit of concentration that a planned reading is in: that of the dose in a liter, or of the contents. */
+function plannedUnit(amount: Value | undefined, content: Value | undefined): Unit {
+  if (!amount && content?.unit) return content.unit;
   const perLiter = amount?.unit && knownUnit(`${amount.unit.name}/L`);
   return perLiter ?? { name: "g/L", factor: 1, offset: 0, dimension: dimensions["mass concentration"] };
 }

@@ -24,7 +24,8 @@ export interface Copy {
 /** How a plant was unrolled: what was decided on the way, for whoever goes it again. */
 export interface UnrollPlan {
   readonly plant: Plant;
-  readonly entry: number;
+  /** The part of the tracer that is put into each node. */
+  readonly put: ReadonlyMap<number, number>;
   readonly blends: readonly (Blend | undefined)[];
   readonly into: Adjacency;
   readonly copies: readonly Copy[];

@@ -1,6 +1,8 @@
 import type { Plant } from "../compile/plant.js";
+import { isClosed } from "../model/network.js";
 import { type Adjacency, adjacency } from "../numerics/graph.js";
 import { NodeEquations } from "../transfer/node-equations.js";
+import { type Entry, partsOf } from "./entry.js";
 import type { Passing } from "./laplace-gain.js";
 
 /** Tracer on its way into a copy: what left a delayed node; `slot` numbers it. */
@@ -45,7 +47,7 @@ const mostCopies = 10_000;
 export function passes(
   plant: Plant,
   passing: readonly Passing[],
-  entry: number,
+  entry: Entry,
   horizon: number,
   budget: number,
 ): Passes {
@@ -64,14 +66,14 @@ export function passes(
     if (copies.length >= budget && !undispersed) return { copies, rest: open, slots, truncated: false };
     if (copies.length >= mostCopies) return { copies, rest: [], slots, truncated: true };
     const { delay, seeds } = waiting.shift() as (typeof waiting)[number];
-    const put = copies.length === 0 && plant.nodes[entry].inflow > 0 ? 1 / plant.nodes[entry].inflow : 0;
+    const put = copies.length === 0 ? putIn(plant, entry) : [];
     const direct = new Float64Array(n);
     const smooth = new Float64Array(n);
-    if (passing[entry].delay === 0) direct[entry] += put * passing[entry].direct;
+    for (const [node, c] of put) if (passing[node].delay === 0) direct[node] += c * passing[node].direct;
     for (const { node, slot } of seeds) direct[node] += slotDirect[slot];
     equations.direct(direct);
     const enteringDirect = entering(plant, into, direct);
-    enteringDirect[entry] += put;
+    for (const [node, c] of put) enteringDirect[node] += c;
     for (let i = 0; i < n; i++) {
       if (passing[i].delay === 0)
         smooth[i] += enteringDirect[i] * (plant.nodes[i].inflow > 0 ? 1 - passing[i].direct : 0);
@@ -104,6 +106,13 @@ export function passes(
   return { copies, rest: [], slots, truncated: false };
 }
 
+/** What a unit of tracer adds to the mean of what enters each node, 1/m3 s; nothing where nothing flows. */
+const putIn = (plant: Plant, entry: Entry): [node: number, concentration: number][] =>
+  [...partsOf(entry)].flatMap(([node, part]): [number, number][] => {
+    const { inflow } = plant.nodes[node];
+    return inflow > 0 ? [[node, part / inflow]] : [];
+  });
+
 /** The seed of a node at a time, made where there is none; equal times are one. */
 function arrive(waiting: { delay: number; seeds: Seed[] }[], delay: number, node: number, slot: number): Seed {
   const near = 1e-12 * delay;
@@ -127,7 +136,9 @@ function cutEquations(plant: Plant, passing: readonly Passing[]) {
     equations.factor();
     return (c: Float64Array): void => equations.solve(c, imaginary.fill(0));
   };
-  return { direct: make((i) => passing[i].direct), all: make((i) => (plant.nodes[i].inflow > 0 ? 1 : 0)) };
+  // Circles of a closed vessel have no end: a slight leak leaves every sum finite, and what is 0 stays 0.
+  const passed = isClosed(plant) ? 1 - 1e-6 : 1;
+  return { direct: make((i) => passing[i].direct), all: make((i) => (plant.nodes[i].inflow > 0 ? passed : 0)) };
 }
 
 /** Mean of what links bring to every node. */

@@ -1,7 +1,9 @@
 import { requireCarried } from "../compile/carried.js";
 import type { Plant } from "../compile/plant.js";
+import { isClosed } from "../model/network.js";
 import { invert, type Wanted } from "../numerics/inversion.js";
 import { SteadyEquations } from "../transfer/steady-equations.js";
+import { type Entry, partsOf } from "./entry.js";
 import { type Passing, passings } from "./laplace-gain.js";
 import { type Passes, passes } from "./laplace-passes.js";
 import { type Channel, transformsOf } from "./laplace-transforms.js";
@@ -29,8 +31,9 @@ export const laplace: TracerWay = {
   name: "laplace",
   trace(plant, entry, horizon) {
     requireCarried(plant, "laplace");
-    const flow = plant.feeds.reduce((sum, f) => sum + f.flow, 0);
-    const unit = plant.volume.active / flow || 1;
+    const fed = plant.feeds.reduce((sum, f) => sum + f.flow, 0);
+    const flow = isClosed(plant) ? plant.columns.inflow.reduce((most, q) => Math.max(most, q), 0) : fed;
+    const unit = flow > 0 ? plant.volume.active / flow || 1 : 1;
     return new LaplaceTracing(plant, entry, horizon, unit);
   },
 };
@@ -47,20 +50,26 @@ class LaplaceTracing implements Tracing {
   private readonly passing: readonly Passing[];
   private sorted: Passes;
   private budget = firstBudget;
-  /** Integral over all time of what leaves a node. */
+  /** Integral over all time of what leaves a node; in a closed vessel, where it has none, over the unit of time at the mean level. */
   private readonly doses: Float64Array;
 
   constructor(
     private readonly plant: Plant,
-    private readonly entry: number,
+    private readonly entry: Entry,
     private readonly horizon: number,
     private readonly unit: number,
   ) {
     this.passing = passings(plant, unit);
     this.sorted = this.sort();
     this.doses = new Float64Array(plant.nodes.length);
-    const { inflow } = plant.nodes[entry];
-    if (inflow > 0) this.doses[entry] = 1 / inflow;
+    if (isClosed(plant)) {
+      this.doses.fill(unit / plant.volume.active);
+      return;
+    }
+    for (const [node, part] of partsOf(entry)) {
+      const { inflow } = plant.nodes[node];
+      if (inflow > 0) this.doses[node] += part / inflow;
+    }
     new SteadyEquations(plant).solve(this.doses);
   }
 

@@ -65,8 +65,11 @@ function finiteOrders(plant: Plant, gains: readonly Float64Array[], passing: Flo
   return finite;
 }
 
+/** Where nothing arrives. */
+export const noMoments: NodeMoments = { share: 0, mean: Number.NaN, variance: Number.NaN, skewness: undefined };
+
 function momentsOf(a0: number, a1: number, a2: number, a3: number, finite: number): NodeMoments {
-  if (!(a0 > 0)) return { share: 0, mean: Number.NaN, variance: Number.NaN, skewness: undefined };
+  if (!(a0 > 0)) return noMoments;
   const mean = finite > 1 ? -a1 / a0 : Number.POSITIVE_INFINITY;
   if (finite < 3) return { share: a0, mean, variance: Number.POSITIVE_INFINITY, skewness: undefined };
   const second = (2 * a2) / a0;

@@ -1,6 +1,10 @@
 import { uncarried } from "../compile/carried.js";
 import { Part, type Plant } from "../compile/plant.js";
+import { isClosed } from "../model/network.js";
 import type { Problem } from "../problems/problem.js";
+import { RefusedError } from "../problems/refused.js";
+import { problem } from "../problems/report.js";
+import type { Entry } from "./entry.js";
 import { exact } from "./exact.js";
 import { laplace } from "./laplace.js";
 import type { TracerEngine } from "./linear-system.js";
@@ -11,8 +15,25 @@ import { unroll } from "./unroll.js";
 /** An engine of either sort: one that integrates what is left when tubes are unrolled, or one with a way of its own. */
 export type AnyEngine = TracerEngine | TracerWay;
 
-/** The exact engine for cells, tubes and junctions alone, laplace for plants with other bodies. */
-export const engineFor = (plant: Plant): AnyEngine => (plant.columns.part.includes(Part.Block) ? laplace : exact);
+/** Passes through tubes of a closed vessel that the exact engine follows one by one; beyond, laplace takes them together. */
+const fewPasses = 60;
+
+/**
+ * The exact engine for cells, tubes and junctions alone; laplace for plants with other bodies, and where tracer goes round
+ * and round a closed vessel.
+ * @param horizon s; nothing later is asked
+ */
+export const engineFor = (plant: Plant, horizon = 0): AnyEngine =>
+  plant.columns.part.includes(Part.Block) || (isClosed(plant) && passesIn(plant, horizon) > fewPasses)
+    ? laplace
+    : exact;
+
+/** How often tracer may pass the shortest tube. */
+function passesIn({ columns: { size, part, volume, inflow } }: Plant, horizon: number): number {
+  let most = 0;
+  for (let i = 0; i < size; i++) if (part[i] === Part.Delay) most = Math.max(most, (horizon * inflow[i]) / volume[i]);
+  return most;
+}
 
 /** Why no engine follows tracer through a plant: too many nodes. */
 export const untraceable = (plant: Plant): Problem[] =>
@@ -20,13 +41,22 @@ export const untraceable = (plant: Plant): Problem[] =>
 
 /**
  * Follows tracer through a plant with an engine.
- * @throws RefusedError where the engine does not carry the plant
+ * @throws RefusedError where the engine does not carry the plant, or tracer goes round a closed vessel too often
  */
-export function trace(plant: Plant, entry: number, horizon: number, engine: AnyEngine = engineFor(plant)): Tracing {
-  return "trace" in engine ? engine.trace(plant, entry, horizon) : unrolledTracing(plant, entry, horizon, engine);
+export function trace(
+  plant: Plant,
+  entry: Entry,
+  horizon: number,
+  engine: AnyEngine = engineFor(plant, horizon),
+): Tracing {
+  const tracing =
+    "trace" in engine ? engine.trace(plant, entry, horizon) : unrolledTracing(plant, entry, horizon, engine);
+  // Elsewhere a pass that is given up carries next to nothing; in a closed vessel it carries what the first did.
+  if (isClosed(plant) && tracing.truncated) throw new RefusedError([problem("too-many-passes", plant.network.at, {})]);
+  return tracing;
 }
 
-function unrolledTracing(plant: Plant, entry: number, horizon: number, engine: TracerEngine): Tracing {
+function unrolledTracing(plant: Plant, entry: Entry, horizon: number, engine: TracerEngine): Tracing {
   const unrolled = unroll(plant, entry, horizon);
   return {
     truncated: unrolled.truncated,

@@ -1,6 +1,7 @@
 import type { Plant } from "../compile/plant.js";
+import { isClosed } from "../model/network.js";
 import { constantRate, instant } from "./linear-system.js";
-import { moments, type NodeMoments } from "./moments.js";
+import { moments, type NodeMoments, noMoments } from "./moments.js";
 import type { Balance } from "./respond.js";
 import { type AnyEngine, engineFor, trace } from "./trace.js";
 
@@ -11,7 +12,10 @@ export interface TracerOptions {
   readonly at?: readonly string[];
 }
 
-/** A curve at one place. `value` and `cumulative` per unit of tracer, as the contract of `simulate` says. */
+/**
+ * A curve at one place. `value` and `cumulative` per unit of tracer, as the contract of `simulate` says. In a closed vessel
+ * volume stands for flow: `value` after a pulse is c V / amount and tends to 1; areas are times.
+ */
 export interface TracerReading {
   readonly at: string;
   /** Pulse: c Q / amount, 1/s, without its spikes. Step: c / c_in. */
@@ -22,6 +26,7 @@ export interface TracerReading {
   readonly spikes: readonly { readonly time: number; readonly area: number }[];
   /** Area of the spikes that were too small or too many to list. */
   readonly spikesLeftOut: number;
+  /** In a closed vessel, which nothing leaves: share 0, the others undefined. */
   readonly moments: NodeMoments;
   /** Area of `value` over all time: share * Q / flow through the place. */
   readonly area: number;
@@ -57,21 +62,22 @@ export function tracerResponse(
   times: ArrayLike<number>,
   options: TracerOptions = {},
 ): TracerResult {
-  const engine = options.engine ?? engineFor(plant);
   const entry = plant.entry.get(injection.at);
   if (entry === undefined) throw new RangeError(`no place '${injection.at}' in the network`);
   const clock = Float64Array.from(times);
   const until = clock[clock.length - 1] ?? 0;
-  const flow = injectionFlow(plant, injection.at);
+  const engine = options.engine ?? engineFor(plant, until);
+  const flow = measureOf(plant, injection.at);
   const tracing = trace(plant, entry, until, engine);
   const drive = injection.form === "pulse" ? instant(1) : constantRate(1);
+  if (isClosed(plant) && injection.form === "step") throw new RangeError("nothing enters a closed vessel: no step");
   const places = [...plant.outlets.map((o) => o.name), ...(options.at ?? [])];
   const nodes = places.map((name) => exitOf(plant, name));
   const { seen, stopped } = tracing.see(
     drive,
     nodes.map((node) => ({ node, times: clock })),
   );
-  const all = moments(plant, entry);
+  const all = isClosed(plant) ? undefined : moments(plant, entry);
   const readings = places.map((at, i): TracerReading => {
     const node = nodes[i];
     const pulse = injection.form === "pulse";
@@ -82,8 +88,8 @@ export function tracerResponse(
       value,
       cumulative: pulse ? seen[i].integral.map((c) => c * flow) : value,
       ...spikesOf(tracing.passagesAt(node), flow, pulse),
-      moments: all[node],
-      area: inflow > 0 ? (all[node].share * flow) / inflow : 0,
+      moments: all?.[node] ?? noMoments,
+      area: all && inflow > 0 ? (all[node].share * flow) / inflow : 0,
     };
   });
   return {
@@ -103,8 +109,12 @@ export function exitOf(plant: Plant, name: string): number {
   return node;
 }
 
-/** Flow that an injection is counted against: of the feed injected into, or of all feeds. m3/s. */
-export function injectionFlow(plant: Plant, at: string): number {
+/**
+ * What makes a concentration after a unit of tracer a number to compare: the flow of the feed injected into, or of all feeds,
+ * m3/s. In a closed vessel its volume, m3: the curve then ends at 1.
+ */
+function measureOf(plant: Plant, at: string): number {
+  if (isClosed(plant)) return plant.volume.active;
   const feed = plant.feeds.find((f) => f.name === at);
   return feed ? feed.flow : plant.feeds.reduce((sum, f) => sum + f.flow, 0);
 }

@@ -1,4 +1,5 @@
 import type { Plant } from "../compile/plant.js";
+import type { Entry } from "./entry.js";
 import type { Drive } from "./linear-system.js";
 import type { Balance, Seen } from "./respond.js";
 
@@ -28,8 +29,8 @@ export interface Tracing {
 export interface TracerWay {
   readonly name: string;
   /**
-   * @param entry   node where tracer is put in
+   * @param entry   where tracer is put in
    * @param horizon s; nothing later is asked
    */
-  trace(plant: Plant, entry: number, horizon: number): Tracing;
+  trace(plant: Plant, entry: Entry, horizon: number): Tracing;
 }

@@ -1,10 +1,11 @@
 import { Part, type Plant } from "../compile/plant.js";
 import type { PlantSlope } from "../compile/plant-slopes.js";
+import { isClosed } from "../model/network.js";
 import type { Injection, Trial } from "../model/trial.js";
 import { SteadyEquations } from "../transfer/steady-equations.js";
 import { addCurves, type Curves } from "./moved-curves.js";
 import { type Around, MovedSystem, type Probe } from "./moved-system.js";
-import { driveOf } from "./trial.js";
+import { driveOf } from "./puts.js";
 import { unroll } from "./unroll.js";
 
 /** A direction in which a plant and a trial move, per unit of t. */
@@ -23,8 +24,9 @@ export interface MovedResponse {
   readonly slopes: readonly (readonly Float64Array[] | undefined)[];
 }
 
-/** Has the exact engine a plant, and with it these derivatives? */
-export const hasSlopes = (plant: Plant): boolean => !plant.columns.part.includes(Part.Block);
+/** Are there these derivatives? For plants of the exact engine, but for closed ones and trials that start with tracer inside. */
+export const hasSlopes = (plant: Plant, trial: Trial): boolean =>
+  !plant.columns.part.includes(Part.Block) && !isClosed(plant) && trial.contents === undefined;
 
 /**
  * `trialResponse` with exact derivatives: those of the compiled balances are integrated beside them, and what a tube delays

@@ -71,7 +71,7 @@ class Follower implements UnrolledSlope {
   }
 
   private copy(copy: Copy): boolean {
-    const { plant, entry, blends } = this.plan;
+    const { plant, put, blends } = this.plan;
     const { nodes } = plant;
     const { volume: dVolume, inflow: dInflow } = this.moved;
     const own = this.seeds.get(copy.seeds) as { delay: number; seeds: Map<number, Draft> };
@@ -86,11 +86,11 @@ class Follower implements UnrolledSlope {
       const sum: Draft = { weights: new Map(), direct: 0 };
       for (const [s, w] of blend) {
         if (nodes[s].part !== Part.Joint) add(sum, slope(s), w);
-        else if (first && s === entry) sum.direct -= (w * dInflow[s]) / nodes[s].inflow ** 2;
+        else if (first) sum.direct -= (w * (put.get(s) ?? 0) * dInflow[s]) / nodes[s].inflow ** 2;
       }
       for (const [s, dw] of this.blends[i] ?? []) {
         if (nodes[s].part !== Part.Joint) add(sum, source(s), dw);
-        else if (first && s === entry) sum.direct += dw / nodes[s].inflow;
+        else if (first) sum.direct += (dw * (put.get(s) ?? 0)) / nodes[s].inflow;
       }
       outflow.set(i, sum);
     }
@@ -117,8 +117,8 @@ class Follower implements UnrolledSlope {
 
   /** Sum of flow times source into a node, and how it moves. */
   private entering(i: number, first: boolean, source: (i: number) => Draft, slope: (i: number) => Draft) {
-    const { plant, entry, into } = this.plan;
-    const sum: Draft = { weights: new Map(), direct: first && i === entry ? 1 : 0 };
+    const { plant, put, into } = this.plan;
+    const sum: Draft = { weights: new Map(), direct: first ? (put.get(i) ?? 0) : 0 };
     const dSum: Draft = { weights: new Map(), direct: 0 };
     for (let e = into.start[i]; e < into.start[i + 1]; e++) {
       const k = into.edges[e];

@@ -1,10 +1,12 @@
 import { requireCarried } from "../compile/carried.js";
 import { Part, type Plant } from "../compile/plant.js";
 import type { PlantSlope } from "../compile/plant-slopes.js";
+import { isClosed } from "../model/network.js";
 import { type Adjacency, adjacency } from "../numerics/graph.js";
 import { factor, solve } from "../numerics/lu.js";
 import { sparseRows } from "../numerics/sparse.js";
 import { add, type Copy, type Draft, type UnrollPlan } from "./drafts.js";
+import { type Entry, partsOf } from "./entry.js";
 import { type Blend, jointBlends } from "./joints.js";
 import type { LinearSystem, Passage } from "./linear-system.js";
 import { type UnrolledSlope, unrolledSlope } from "./unroll-slopes.js";
@@ -34,13 +36,13 @@ const mostStates = 50_000;
 const smallestPass = 1e-12;
 
 /**
- * @param node    where a unit of tracer is put in: a joint (a feed), a cell, or a tube's inlet end
+ * @param entry   where a unit of tracer is put in: a joint (a feed), a cell, or a tube's inlet end
  * @param horizon s; passes later than this are left out
  * @throws RefusedError where a body is none of cells, delays and joints
  */
-export function unroll(plant: Plant, node: number, horizon: number): Unrolled {
+export function unroll(plant: Plant, entry: Entry, horizon: number): Unrolled {
   requireCarried(plant);
-  const builder = new Unroller(plant, node);
+  const builder = new Unroller(plant, entry);
   const truncated = builder.build(horizon);
   return {
     truncated,
@@ -66,24 +68,27 @@ class Unroller {
   private readonly blends: (Blend | undefined)[];
   private readonly out: Adjacency;
   private readonly into: Adjacency;
+  private readonly put: ReadonlyMap<number, number>;
   private readonly loops: boolean;
   /** Integral over all time of each state for a unit of tracer; kept only where a loop holds a tube. */
   private readonly dose: number[] = [];
 
   constructor(
     private readonly plant: Plant,
-    private readonly entry: number,
+    entry: Entry,
   ) {
+    this.put = partsOf(entry);
     this.blends = jointBlends(plant);
     this.out = adjacency(plant.nodes.length, plant.from);
     this.into = adjacency(plant.nodes.length, plant.to);
-    this.loops = hasTubeInLoop(plant);
+    // In a closed vessel no pass carries less than the one before: only the horizon ends them.
+    this.loops = !isClosed(plant) && hasTubeInLoop(plant);
   }
 
   /** What was decided, for whoever follows the same way again. */
   get plan(): UnrollPlan {
-    const { plant, entry, blends, into, copies } = this;
-    return { plant, entry, blends, into, copies };
+    const { plant, put, blends, into, copies } = this;
+    return { plant, put, blends, into, copies };
   }
 
   build(horizon: number): boolean {
@@ -132,13 +137,13 @@ class Unroller {
       const sum: Draft = { weights: new Map(), direct: 0 };
       for (const [s, w] of blend) {
         if (nodes[s].part === Part.Joint) {
-          if (first && s === this.entry) sum.direct += w / nodes[s].inflow;
+          if (first) sum.direct += (w * (this.put.get(s) ?? 0)) / nodes[s].inflow;
         } else add(sum, source(s), w);
       }
       outflow.set(i, sum);
     }
     const entering = (i: number): Draft => {
-      const sum: Draft = { weights: new Map(), direct: first && i === this.entry ? 1 : 0 };
+      const sum: Draft = { weights: new Map(), direct: first ? (this.put.get(i) ?? 0) : 0 };
       for (let e = this.into.start[i]; e < this.into.start[i + 1]; e++) {
         const k = this.into.edges[e];
         add(sum, source(from[k]), flow[k]);
@@ -171,7 +176,9 @@ class Unroller {
     const seen = new Set<number>();
     const queue: number[] = [];
     const visit = (i: number) => {
-      if (seen.has(i) || nodes[i].inflow === 0) return;
+      // What is put into a cell that nothing flows through stays there.
+      const still = nodes[i].inflow === 0 && !(nodes[i].part === Part.Cell && this.put.has(i));
+      if (seen.has(i) || still) return;
       seen.add(i);
       if (nodes[i].part !== Part.Delay) queue.push(i);
     };
@@ -180,7 +187,7 @@ class Unroller {
         if (flow[this.out.edges[e]] > 0) visit(to[this.out.edges[e]]);
       }
     };
-    if (first) visit(this.entry);
+    if (first) for (const node of this.put.keys()) visit(node);
     for (const tube of seeds.keys()) follow(tube);
     for (let i = queue.pop(); i !== undefined; i = queue.pop()) follow(i);
     return [...seen].sort((a, b) => a - b);

@@ -2,7 +2,7 @@ import { compile } from "../compile/compile.js";
 import type { Plant } from "../compile/plant.js";
 import type { MomentsOptions } from "../data/moments.js";
 import type { WayOut } from "../data/result.js";
-import type { Network } from "../model/network.js";
+import { isClosed, type Network } from "../model/network.js";
 import type { Study } from "../model/study.js";
 import type { Trial } from "../model/trial.js";
 import { dimensions } from "../units/dimension.js";
@@ -44,9 +44,10 @@ export function vesselFacts(network: Network, trial: Trial): MomentsOptions {
 }
 
 /** Feeds, ways out and the unit of volumes of a plant, for moments. */
-export function placesOf(plant: Plant): Pick<MomentsOptions, "volumeUnit" | "feeds" | "wayOut"> {
+export function placesOf(plant: Plant): Pick<MomentsOptions, "volumeUnit" | "feeds" | "wayOut" | "closed"> {
   return {
     volumeUnit: plant.network.units.unitFor(dimensions.volume),
+    closed: isClosed(plant),
     feeds: new Map(plant.feeds.map((f) => [f.name, f.flow])),
     wayOut: (at) => wayOutOf(plant, at),
   };

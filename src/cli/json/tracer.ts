@@ -2,25 +2,35 @@ import type { Balance } from "../../simulate/respond.js";
 import type { TracerReading, TracerResult } from "../../simulate/tracer.js";
 import type { Unit } from "../../units/unit.js";
 import type { Clock } from "../times.js";
-import { balanceUnit, perUnit, pureNumber, squared } from "../units.js";
+import { pureNumber, squared } from "../units.js";
 import { finite, quantity, series } from "./quantity.js";
 
-/** What `simulate --pulse` and `--step` found. */
-export function tracerJson(result: TracerResult, clock: Clock, form: "pulse" | "step"): Record<string, unknown> {
+/**
+ * What `simulate --pulse` and `--step` found.
+ * @param areaUnit of `cumulative` and spikes: a pure number but in a closed vessel
+ */
+export function tracerJson(
+  result: TracerResult,
+  clock: Clock,
+  valueUnit: Unit,
+  areaUnit: Unit,
+  amount: Unit,
+): Record<string, unknown> {
   const { unit } = clock;
-  const valueUnit = form === "pulse" ? perUnit(unit) : pureNumber;
+  const area = (si: number) => (areaUnit === pureNumber ? si : quantity(si, areaUnit));
   return {
     engine: result.engine,
     readings: result.readings.map((r) => ({
       at: r.at,
       time: { unit: unit.name, values: clock.shown },
       value: series(r.value, valueUnit),
-      cumulative: series(r.cumulative, pureNumber),
-      spikes: r.spikes.map((s) => ({ time: quantity(s.time, unit), area: s.area })),
-      spikesLeftOut: r.spikesLeftOut,
+      cumulative: series(r.cumulative, areaUnit),
+      spikes: r.spikes.map((s) => ({ time: quantity(s.time, unit), area: area(s.area) })),
+      spikesLeftOut: area(r.spikesLeftOut),
     })),
-    moments: result.readings.map((r) => momentsJson(r, unit)),
-    balance: balanceJson(result.balance, balanceUnit(form, unit)),
+    // In a closed vessel, where areas are times, there are none.
+    moments: areaUnit === pureNumber ? result.readings.map((r) => momentsJson(r, unit)) : [],
+    balance: balanceJson(result.balance, amount),
   };
 }
 

@@ -41,8 +41,12 @@ export function networkText(plant: Plant): string {
     ),
     pairs([
       ["vessel", `${formatQuantity(vessel.volume, volume)}${dead}`],
-      ["feed", formatQuantity(vessel.feed, flow)],
-      ["mean time", `${formatQuantity(vessel.meanTime, time)} (active volume over feed)`],
+      ...(vessel.meanTime === undefined
+        ? ([["closed", "nothing enters or leaves, so there is no mean time"]] as const)
+        : ([
+            ["feed", formatQuantity(vessel.feed, flow)],
+            ["mean time", `${formatQuantity(vessel.meanTime, time)} (active volume over feed)`],
+          ] as const)),
     ]),
   );
 }

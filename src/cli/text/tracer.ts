@@ -34,14 +34,18 @@ export function balanceLine({ injected, left, inside, closure }: Balance, unit: 
   return `  tracer balance: injected ${say(injected)}, left ${say(left)}, inside ${say(inside)}; closure ${formatNumber(closure, 1)}`;
 }
 
+/** A share in %, or, in a closed vessel, a time. */
+const areaText = (area: number, unit: Unit): string =>
+  unit.name === "" ? `${formatNumber(100 * area)} %` : formatQuantity(area, unit);
+
 const mostSpikes = 8;
 
 /** Undispersed tracer: the largest few spikes. */
-export function spikesText(readings: readonly TracerReading[], unit: Unit): string {
+export function spikesText(readings: readonly TracerReading[], unit: Unit, areaUnit: Unit): string {
   const all = readings.flatMap((r) => r.spikes.map((s) => ({ ...s, at: r.at })));
   if (all.length === 0) return "";
   const shown = [...all].sort((a, b) => b.area - a.area).slice(0, mostSpikes);
-  const rows = shown.map((s) => [s.at, formatNumber(inUnit(s.time, unit)), `${formatNumber(100 * s.area)} %`]);
+  const rows = shown.map((s) => [s.at, formatNumber(inUnit(s.time, unit)), areaText(s.area, areaUnit)]);
   const text = table(
     [{ title: "undispersed at" }, { title: `time, ${unit.name}`, align: "right" }, { title: "area", align: "right" }],
     rows,

@@ -66,12 +66,12 @@ export const flowEntries = {
   "no-feed": entry<Record<never, never>>({
     severity: "error",
     says: () => "the network has no feed",
-    fix: "declare one, such as `feeds: {feed: {flow: 10 L/min, to: bulk}}`; closed vessels are not in this version",
+    fix: "declare one, such as `feeds: {feed: {flow: 10 L/min, to: bulk}}`; a closed vessel has neither feeds nor outlets",
   }),
   "no-outlet": entry<Record<never, never>>({
     severity: "error",
     says: () => "the network has no outlet",
-    fix: "declare one, such as `outlets: [product]`, and send a stream to it",
+    fix: "declare one, such as `outlets: [product]`, and send a stream to it; a closed vessel has neither feeds nor outlets",
   }),
   "no-way-out": entry<{ name: string; feed: boolean }>({
     severity: "error",
@@ -99,6 +99,28 @@ export const flowEntries = {
     severity: "error",
     says: ({ names }) => `the flow that goes round through ${quoted(names)} has no end: no share of it leaves`,
     fix: "let a share above 0 % of it go on towards an outlet; fixed flows alone do not settle it",
+  }),
+  "closed-apart": entry<{ names: readonly string[]; from: string }>({
+    severity: "error",
+    says: ({ names, from }) => `in this closed vessel nothing joins ${quoted(names)} with '${from}'`,
+    fix: "join them by streams or an exchange, or describe each vessel in a file of its own; what stands idle in a vessel is `kind: dead`",
+  }),
+  "closed-mean-time": entry<Record<never, never>>({
+    severity: "error",
+    says: () => "nothing leaves a closed vessel, so it has no mean time to check",
+    fix: "check a `volume` or a `flow`: the time to go round once is the one over the other",
+  }),
+  "closed-unbalanced": entry<{ name: string; arrives: string; sends: string }>({
+    severity: "error",
+    says: ({ name, arrives, sends }) => `${arrives} arrives at '${name}', but it sends ${sends}`,
+    fix: ({ arrives }) =>
+      `in a closed vessel the flows must balance at every place: let it send ${arrives}, or send it what it sends; one name under \`to:\` takes all that arrives`,
+  }),
+  "closed-flow-open": entry<{ names: readonly string[] }>({
+    severity: "error",
+    says: ({ names }) => `nothing says how much goes round through ${quoted(names)}`,
+    fix: ({ names }) =>
+      `nothing enters a closed vessel, so one of its streams must be a fixed flow, such as \`${names[0]}: {to: {${names[1] ?? names[0]}: 4 L/min}}\``,
   }),
   unreachable: entry<{ names: readonly string[] }>({
     severity: "error",

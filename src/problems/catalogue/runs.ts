@@ -9,6 +9,13 @@ export const runEntries = {
     fix: "leave the choice of the engine to the tool, or ask for `--engine laplace`, without `--verify`",
     example: { name: "core", is: "axial dispersion" },
   }),
+  "too-many-passes": entry({
+    severity: "error",
+    says: (_: Record<never, never>) =>
+      "tracer goes round this closed vessel more often than 10,000 passes through its tubes can tell apart",
+    fix: "ask for a shorter time with `--until`; where the mixing is over, the level is the amount over the volume",
+    example: {},
+  }),
   "unknown-free": entry({
     severity: "error",
     says: (d: { name: string; nearest: string | undefined; names: readonly string[] }) =>

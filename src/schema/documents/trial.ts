@@ -224,8 +224,7 @@ export const trialShape = record({
   },
   injection: {
     shape: oneOrMore(injection),
-    says: "What was put in, where and when. A list for several injections.",
-    required: true,
+    says: "What was put in, where and when. A list for several injections. There is one, or `contents`, or both.",
     example: "{at: feed, pulse: 50 g ± 1 %}",
   },
   readings: {
@@ -235,5 +234,9 @@ export const trialShape = record({
     example: "[{at: product, file: v3-salt.csv, time: {column: t, unit: min}, value: {column: c, unit: g/L}}]",
   },
   tracer: later("Decay, loss or retention of the tracer."),
-  contents: later("Tracer inside at the start."),
+  contents: {
+    says: "Tracer in the vessel at the start, which is time zero (the first row, on a clock): concentrations by compartment, part or member (`chain.2`), evenly spread in each; `all` is what no other name covers. What is not named starts clean. Before the start nothing moves.",
+    example: "{corner: 2 g/L}",
+    shape: named(quantity(), "dotted"),
+  },
 });

@@ -1,0 +1,124 @@
+import { Part, type Plant } from "../compile/plant.js";
+import type { Contents, Injection, Trial } from "../model/trial.js";
+import { RefusedError } from "../problems/refused.js";
+import { problem } from "../problems/report.js";
+import type { Span } from "../text/source.js";
+import type { Entry } from "./entry.js";
+import { constantRate, type Drive, instant } from "./linear-system.js";
+
+/** Tracer that a trial puts in, all by one clock. */
+export interface Put {
+  readonly entry: Entry;
+  /** s on the trial's clock. */
+  readonly start: number;
+  readonly drive: Drive;
+  /** The rate that the vessel is in balance with before, into the same node. */
+  readonly before: number;
+  /** Undefined for an injection; of what was there at the start, when that was: before, all stands still. */
+  readonly begins?: number;
+  /** Beside the drive: a node that holds a level in what leaves it from the start on, and the amount that this stands for. */
+  readonly still?: { readonly node: number; readonly level: number; readonly amount: number };
+}
+
+/** All that a trial puts in: its injections, and what is in the vessel at the start. */
+export function putsOf(plant: Plant, trial: Trial): Put[] {
+  const injections = trial.injections.map((injection): Put => {
+    const entry = plant.entry.get(injection.at);
+    if (entry === undefined) throw new RangeError(`no place '${injection.at}' in the network`);
+    return { entry, start: injection.start, ...driveOf(plant, injection) };
+  });
+  return trial.contents ? [...contentPuts(plant, trial.contents), ...injections] : injections;
+}
+
+/** The tracer rate of an injection from its start on, beside a rate `before` that the vessel is in balance with. */
+export function driveOf(plant: Plant, injection: Injection): { drive: Drive; before: number } {
+  const { form, lasting } = injection;
+  if (form.is === "pulse") {
+    const amount = form.amount.of(plant.env);
+    return { drive: lasting > 0 ? constantRate(amount / lasting, lasting) : instant(amount), before: 0 };
+  }
+  const node = plant.entry.get(injection.at) as number;
+  const flow = plant.nodes[node].inflow;
+  if (form.is === "step") {
+    // A level is a concentration in what enters, or a dosing rate: the dimension tells (a rate has no length in it).
+    const perFlow = form.level.dimension[0] === -3 ? flow : 1;
+    const before = (form.from?.of(plant.env) ?? 0) * perFlow;
+    return { drive: constantRate(form.level.of(plant.env) * perFlow - before, lasting || undefined), before };
+  }
+  return { drive: signalDrive(form.table.time, form.table.value, flow, injection.start), before: 0 };
+}
+
+/** A measured inlet, straight between its points, nothing before the first and its last value after the last. */
+function signalDrive(time: Float64Array, value: Float64Array, flow: number, start: number): Drive {
+  const n = time.length;
+  const slope = new Float64Array(n);
+  for (let i = 0; i + 1 < n; i++) {
+    const span = time[i + 1] - time[i];
+    slope[i] = span > 0 ? ((value[i + 1] - value[i]) / span) * flow : 0;
+  }
+  return { amount: 0, times: time.map((t) => t - start), level: value.map((c) => c * flow), slope };
+}
+
+/**
+ * What cells hold at the start is an amount put into all of them at once. What a tube holds is what entered it during the
+ * space time before; none of it has left by then. What another body holds is what it would go on to send at that level,
+ * less what it would make of entering liquid at that level: of a step, 1 - F is still from before.
+ */
+function contentPuts(plant: Plant, { at, begins, levels }: Contents): Put[] {
+  const { size, part, volume, inflow } = plant.columns;
+  const cells = new Map<number, number>();
+  const others: Put[] = [];
+  const byName = new Map(levels.map(({ of, level }) => [of, level.of(plant.env)]));
+  for (let i = 0; i < size; i++) {
+    const level = volume[i] > 0 ? levelIn(byName, plant.columns.nameOf(i)) : 0;
+    if (level === 0) continue;
+    if (part[i] === Part.Cell) cells.set(i, level * volume[i]);
+    else if (part[i] === Part.Block) {
+      requireBounded(plant, i, at);
+      others.push(...blockPuts(plant, i, level, begins));
+    } else if (inflow[i] > 0) {
+      const span = volume[i] / inflow[i];
+      const drive = constantRate(level * inflow[i], span);
+      others.push({ entry: i, start: begins - span, drive, before: 0, begins });
+    }
+  }
+  if (cells.size === 0) return others;
+  const amount = [...cells.values()].reduce((sum, m) => sum + m, 0);
+  for (const [cell, m] of cells) cells.set(cell, m / amount);
+  return [{ entry: cells, start: begins, drive: instant(amount), before: 0, begins }, ...others];
+}
+
+/** A body whose tracer may stay beyond its ends and come back does not say what it holds. */
+function requireBounded({ nodes }: Plant, node: number, at: Span): void {
+  const { name, volume, inflow, block } = nodes[node];
+  const spaceTime = volume / inflow;
+  if (!block || Math.abs(block.series(inflow)[1] + spaceTime) <= 1e-9 * spaceTime) return;
+  const what = `tracer at the start in '${name}', whose ends are open,`;
+  throw new RefusedError([problem("not-yet", at, { what })]);
+}
+
+function blockPuts({ columns, from, to, flow }: Plant, node: number, level: number, begins: number): Put[] {
+  const inflow = columns.inflow[node];
+  const onward = new Map<number, number>();
+  for (let k = 0; k < from.length; k++) {
+    if (from[k] === node) onward.set(to[k], (onward.get(to[k]) ?? 0) + flow[k] / inflow);
+  }
+  const put = (entry: Entry, rate: number): Put => ({
+    entry,
+    start: begins,
+    drive: constantRate(rate),
+    before: 0,
+    begins,
+  });
+  const still = { node, level, amount: level * columns.volume[node] };
+  return [{ ...put(onward, level * inflow), still }, put(node, -level * inflow)];
+}
+
+/** The level of a node: that of the longest name that it lies under, else of `all`. */
+function levelIn(levels: ReadonlyMap<string, number>, node: string): number {
+  for (let name = node; name !== ""; name = name.slice(0, Math.max(0, name.lastIndexOf(".")))) {
+    const level = levels.get(name);
+    if (level !== undefined) return level;
+  }
+  return levels.get("all") ?? 0;
+}
