@@ -1,13 +1,12 @@
-import { bicgstab, bicgstabSpace } from "./bicgstab.js";
+import { bicgstab } from "./bicgstab.js";
 import { flowOrder } from "./flow-order.js";
 import type { Graph } from "./graph.js";
-import { incompleteLu, solveIlu } from "./ilu.js";
+import { incompleteLu } from "./ilu.js";
 import { multiply, type SparseRows } from "./sparse.js";
 
-/** A part of the residual that a round of the iteration is to leave, and how many rounds and steps it may take. */
-const perRound = 1e-7;
+/** A part of the residual that a round of the iteration is to leave, and how many rounds and products it may take. */
+const goal = { relative: 1e-7, most: 4000 };
 const mostRounds = 40;
-const mostSteps = 2000;
 /** A correction smaller than this beside the largest entry is rounding. */
 const settled = 2e-15;
 /** A residual smaller than this beside the terms that it is the sum of is rounding. */
@@ -37,14 +36,9 @@ export function balanceSolver(graph: Graph, part: ArrayLike<number>, excess: Flo
   for (let p = 0; p < n; p++) place[order[p]] = p;
   const outside = excess.map((_, p) => excess[order[p]]);
   const matrix = balanceMatrix(graph, part, outside, place);
-  const factors = incompleteLu(matrix);
-  if (!factors) return undefined;
-  const space = bicgstabSpace(n);
-  const operator = {
-    size: n,
-    apply: (x: Float64Array, y: Float64Array) => multiply(matrix, x, y),
-    precondition: (r: Float64Array, z: Float64Array) => solveIlu(factors, r, z),
-  };
+  const preconditioner = incompleteLu(matrix);
+  if (!preconditioner.take(matrix.value)) return undefined;
+  const iterate = bicgstab({ size: n, multiply: (x, y) => multiply(matrix, x, y), preconditioner });
   const [rhs, x, correction, residual] = [0, 1, 2, 3].map(() => new Float64Array(n));
   return {
     solve(b) {
@@ -54,8 +48,12 @@ export function balanceSolver(graph: Graph, part: ArrayLike<number>, excess: Flo
       let last = Number.POSITIVE_INFINITY;
       let good = false;
       for (let round = 0; round < mostRounds; round++) {
-        const reached = bicgstab(operator, residual, correction, perRound, mostSteps, space);
-        if (Number.isNaN(reached)) solveIlu(factors, residual, correction); // a step of plain iteration instead
+        correction.fill(0);
+        if (!(iterate(residual, correction, goal).residual < 1)) {
+          // No nearer: a step of plain iteration instead.
+          correction.set(residual);
+          preconditioner.apply(correction);
+        }
         let [change, size] = [0, 0];
         for (let p = 0; p < n; p++) {
           x[p] += correction[p];

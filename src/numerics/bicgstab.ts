@@ -1,68 +1,59 @@
-/** What BiCGStab needs of a matrix and of something near its inverse; both write into the second array. */
-export interface Operator {
-  readonly size: number;
-  apply(x: Float64Array, y: Float64Array): void;
-  precondition(r: Float64Array, z: Float64Array): void;
-}
-
-/** Seven vectors, made once. */
-export type BicgstabSpace = readonly Float64Array[];
-
-export const bicgstabSpace = (size: number): BicgstabSpace => Array.from({ length: 7 }, () => new Float64Array(size));
+import { dot, type IterativeMethod, type IterativeProblem, norm } from "./krylov.js";
 
 /**
- * Solves A x = b from x = 0 until the residual's norm is `tolerance` times that of b, or it gets no further.
- * @returns the residual's norm reached, relative to that of b; NaN where the method broke down
+ * BiCGStab, preconditioned from the right, begun anew from the true residual where it breaks down or its own residual
+ * has drifted from the true one.
  * @see H.A. van der Vorst, SIAM J. Sci. Stat. Comput. 13 (1992) 631-644
  */
-export function bicgstab(
-  { size: n, apply, precondition }: Operator,
-  b: Float64Array,
-  x: Float64Array,
-  tolerance: number,
-  mostSteps: number,
-  space: BicgstabSpace,
-): number {
-  const [r, shadow, p, v, s, t, z] = space;
-  x.fill(0);
-  r.set(b);
-  shadow.set(b);
-  p.fill(0);
-  v.fill(0);
-  const size = norm(b);
-  if (size === 0) return 0;
-  let [rho, alpha, omega] = [1, 1, 1];
-  for (let step = 0; step < mostSteps; step++) {
-    const next = dot(shadow, r);
-    const beta = (next / rho) * (alpha / omega);
-    rho = next;
-    for (let i = 0; i < n; i++) p[i] = r[i] + beta * (p[i] - omega * v[i]);
-    precondition(p, z);
-    apply(z, v);
-    alpha = rho / dot(shadow, v);
-    if (!Number.isFinite(alpha)) return Number.NaN;
-    for (let i = 0; i < n; i++) {
-      x[i] += alpha * z[i];
-      s[i] = r[i] - alpha * v[i];
+export function bicgstab({ size: n, multiply, preconditioner }: IterativeProblem): IterativeMethod {
+  const [r, shadow, p, v, t, y, z] = Array.from({ length: 7 }, () => new Float64Array(n));
+  return (b, x, { relative, most }) => {
+    const size = norm(b);
+    const wanted = relative * size;
+    let products = 0;
+    let left = Number.POSITIVE_INFINITY;
+    for (let attempt = 0; attempt < 30; attempt++) {
+      multiply(x, v);
+      products++;
+      for (let i = 0; i < n; i++) r[i] = b[i] - v[i];
+      const before = left;
+      left = norm(r);
+      if (left <= wanted) return { reached: true, residual: size > 0 ? left / size : 0, products };
+      if (!(left < before / 2) || products >= most) break;
+      shadow.set(r);
+      p.fill(0);
+      v.fill(0);
+      let [rho, alpha, omega] = [1, 1, 1];
+      while (products < most) {
+        const next = dot(shadow, r);
+        const beta = (next / rho) * (alpha / omega);
+        if (!(Math.abs(next) > 0) || !Number.isFinite(beta)) break;
+        rho = next;
+        for (let i = 0; i < n; i++) p[i] = r[i] + beta * (p[i] - omega * v[i]);
+        y.set(p);
+        preconditioner?.apply(y);
+        multiply(y, v);
+        alpha = rho / dot(shadow, v);
+        if (!Number.isFinite(alpha)) break;
+        for (let i = 0; i < n; i++) {
+          x[i] += alpha * y[i];
+          r[i] -= alpha * v[i];
+        }
+        products++;
+        if (norm(r) <= wanted) break;
+        z.set(r);
+        preconditioner?.apply(z);
+        multiply(z, t);
+        products++;
+        omega = dot(t, r) / dot(t, t);
+        if (!(Math.abs(omega) > 0)) break;
+        for (let i = 0; i < n; i++) {
+          x[i] += omega * z[i];
+          r[i] -= omega * t[i];
+        }
+        if (norm(r) <= wanted) break;
+      }
     }
-    if (norm(s) <= tolerance * size) return norm(s) / size;
-    precondition(s, z);
-    apply(z, t);
-    omega = dot(t, s) / dot(t, t);
-    if (!Number.isFinite(omega) || omega === 0) return Number.NaN;
-    for (let i = 0; i < n; i++) {
-      x[i] += omega * z[i];
-      r[i] = s[i] - omega * t[i];
-    }
-    if (norm(r) <= tolerance * size) return norm(r) / size;
-  }
-  return norm(r) / size;
-}
-
-const norm = (x: Float64Array): number => Math.sqrt(dot(x, x));
-
-function dot(x: Float64Array, y: Float64Array): number {
-  let sum = 0;
-  for (let i = 0; i < x.length; i++) sum += x[i] * y[i];
-  return sum;
+    return { reached: false, residual: left / size, products };
+  };
 }

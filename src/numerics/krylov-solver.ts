@@ -1,6 +1,7 @@
-import { bicgstab, type IterativeGoal, type IterativeMethod, type IterativeProblem, norm } from "./krylov.js";
-import { gmres } from "./krylov-gmres.js";
-import { incompleteLu } from "./krylov-ilu.js";
+import { bicgstab } from "./bicgstab.js";
+import { gmres } from "./gmres.js";
+import { incompleteLu } from "./ilu.js";
+import { type IterativeGoal, type IterativeMethod, type IterativeProblem, norm } from "./krylov.js";
 import type { LinearSolver, Pattern } from "./linear-solver.js";
 import { multiply, type SparseRows } from "./sparse.js";
 

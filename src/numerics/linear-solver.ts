@@ -34,6 +34,11 @@ export interface DirectOptions {
    * 0 lets everything pass but true zeros: right where a near-singular matrix only steers an iteration.
    */
   readonly tiny?: number;
+  /**
+   * For sparse elimination: the diagonal is always the pivot, whatever came before, so that the factors depend on their
+   * matrix alone. Right for balances, whose rows are dominated by it. Default false.
+   */
+  readonly onDiagonal?: boolean;
 }
 
 export const defaultTiny = 4 * Number.EPSILON;

@@ -8,10 +8,13 @@ import {
 } from "./linear-solver.js";
 import { minimumDegree } from "./ordering.js";
 import { stale } from "./sparse-lu.js";
-import { choosePivots, type Pivots } from "./sparse-lu-pivots.js";
+import { choosePivots, enough, type Pivots } from "./sparse-lu-pivots.js";
 
 /** The complex form of `sparseSolver`; sizes are |re| + |im|. */
-export function sparseComplexSolver(pattern: Pattern, { tiny = defaultTiny }: DirectOptions = {}): ComplexLinearSolver {
+export function sparseComplexSolver(
+  pattern: Pattern,
+  { tiny = defaultTiny, onDiagonal = false }: DirectOptions = {},
+): ComplexLinearSolver {
   const n = pattern.size;
   const scale = scales(n);
   const xRe = new Float64Array(n);
@@ -19,15 +22,14 @@ export function sparseComplexSolver(pattern: Pattern, { tiny = defaultTiny }: Di
   const inverseRe = new Float64Array(n); // of the pivots
   const inverseIm = new Float64Array(n);
   const order = minimumDegree(pattern);
+  const lasting = onDiagonal ? 0 : stale;
   let pivots: Pivots | undefined;
-  let lRe = new Float64Array(0);
-  let lIm = new Float64Array(0);
-  let uRe = new Float64Array(0);
-  let uIm = new Float64Array(0);
+  let factors = room(0, 0);
 
   /** False where the pivots of an earlier matrix do not suit this one. */
   const refactor = (re: Float64Array, im: Float64Array, p: Pivots): boolean => {
     const { start, source, target, lStart, lRow, uStart, uRow } = p;
+    const { lRe, lIm, uRe, uIm } = factors;
     for (let k = 0; k < n; k++) {
       for (let e = start[k]; e < start[k + 1]; e++) {
         xRe[target[e]] += re[source[e]];
@@ -61,12 +63,13 @@ export function sparseComplexSolver(pattern: Pattern, { tiny = defaultTiny }: Di
         const aIm = xIm[i];
         xRe[i] = 0;
         xIm[i] = 0;
-        largest = Math.max(largest, Math.abs(aRe) + Math.abs(aIm));
+        const here = Math.abs(aRe) + Math.abs(aIm);
+        if (here > largest) largest = here;
         lRe[m] = aRe * pRe - aIm * pIm;
         lIm[m] = aRe * pIm + aIm * pRe;
       }
       const solid = size > tiny * Math.min(scale.row[p.row[k]], scale.column[p.column[k]]);
-      if (!(size >= stale * largest) || !solid || !(square > 0 && square < Number.POSITIVE_INFINITY)) {
+      if (!(size >= lasting * largest) || !solid || !(square > 0 && square < Number.POSITIVE_INFINITY)) {
         xRe.fill(0);
         xIm.fill(0);
         return false;
@@ -82,17 +85,15 @@ export function sparseComplexSolver(pattern: Pattern, { tiny = defaultTiny }: Di
     factor(re, im) {
       if (!measure(pattern, re, im, scale)) return false;
       if (pivots && refactor(re, im, pivots)) return true;
-      pivots = choosePivots(pattern, order, re, im, scale, tiny);
+      pivots = choosePivots(pattern, order, re, im, scale, tiny, onDiagonal ? 0 : enough);
       if (!pivots) return false;
-      lRe = new Float64Array(pivots.lRow.length);
-      lIm = new Float64Array(pivots.lRow.length);
-      uRe = new Float64Array(pivots.uRow.length);
-      uIm = new Float64Array(pivots.uRow.length);
+      factors = room(pivots.lRow.length, pivots.uRow.length);
       return refactor(re, im, pivots);
     },
     solve(bRe, bIm) {
       if (!pivots) return false;
       const { column, place, lStart, lRow, uStart, uRow } = pivots;
+      const { lRe, lIm, uRe, uIm } = factors;
       for (let i = 0; i < n; i++) {
         xRe[place[i]] = bRe[i];
         xIm[place[i]] = bIm[i];
@@ -122,3 +123,11 @@ export function sparseComplexSolver(pattern: Pattern, { tiny = defaultTiny }: Di
     },
   };
 }
+
+/** Entries of the factors: L below its unit diagonal, U above its diagonal. */
+const room = (lower: number, upper: number) => ({
+  lRe: new Float64Array(lower),
+  lIm: new Float64Array(lower),
+  uRe: new Float64Array(upper),
+  uIm: new Float64Array(upper),
+});

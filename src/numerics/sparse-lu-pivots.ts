@@ -24,7 +24,7 @@ export interface Pivots {
 }
 
 /** The diagonal is taken where it is at least this part of the largest candidate: it keeps the fill low. */
-const diagonalEnough = 0.1;
+export const enough = 0.1;
 
 /**
  * Left-looking elimination with partial pivoting, in the given order of columns; the entries of each column are found by
@@ -40,6 +40,7 @@ export function choosePivots(
   im: Float64Array | undefined,
   scale: Scales,
   tiny: number,
+  diagonalEnough: number,
 ): Pivots | undefined {
   const n = pattern.size;
   const columns = byColumns(pattern, order);

@@ -1,6 +1,6 @@
 import { type DirectOptions, defaultTiny, type LinearSolver, measure, type Pattern, scales } from "./linear-solver.js";
 import { minimumDegree } from "./ordering.js";
-import { choosePivots, type Pivots } from "./sparse-lu-pivots.js";
+import { choosePivots, enough, type Pivots } from "./sparse-lu-pivots.js";
 
 /** A pivot under this part of what stands below it is no longer trusted: pivots are chosen anew. */
 export const stale = 1e-3;
@@ -10,19 +10,23 @@ export const stale = 1e-3;
  * factors of later matrices a plain pass over known places.
  * @see T.A. Davis, E. Palamadai Natarajan, ACM Trans. Math. Softw. 37 (2010) 36 (the same division of labour)
  */
-export function sparseSolver(pattern: Pattern, { tiny = defaultTiny }: DirectOptions = {}): LinearSolver {
+export function sparseSolver(
+  pattern: Pattern,
+  { tiny = defaultTiny, onDiagonal = false }: DirectOptions = {},
+): LinearSolver {
   const n = pattern.size;
   const scale = scales(n);
   const x = new Float64Array(n);
   const diagonal = new Float64Array(n);
   const order = minimumDegree(pattern);
+  const lasting = onDiagonal ? 0 : stale;
   let pivots: Pivots | undefined;
-  let l = new Float64Array(0);
-  let u = new Float64Array(0);
+  let factors = { l: new Float64Array(0), u: new Float64Array(0) };
 
   /** False where the pivots of an earlier matrix do not suit this one. */
   const refactor = (value: Float64Array, p: Pivots): boolean => {
     const { start, source, target, lStart, lRow, uStart, uRow } = p;
+    const { l, u } = factors;
     for (let k = 0; k < n; k++) {
       for (let e = start[k]; e < start[k + 1]; e++) x[target[e]] += value[source[e]];
       for (let e = uStart[k]; e < uStart[k + 1]; e++) {
@@ -44,7 +48,7 @@ export function sparseSolver(pattern: Pattern, { tiny = defaultTiny }: DirectOpt
       }
       const size = Math.abs(pivot);
       const solid = size > tiny * Math.min(scale.row[p.row[k]], scale.column[p.column[k]]);
-      if (!(size >= stale * largest) || !solid || size === Number.POSITIVE_INFINITY) {
+      if (!(size >= lasting * largest) || !solid || size === Number.POSITIVE_INFINITY) {
         x.fill(0);
         return false;
       }
@@ -58,15 +62,15 @@ export function sparseSolver(pattern: Pattern, { tiny = defaultTiny }: DirectOpt
     factor(value) {
       if (!measure(pattern, value, undefined, scale)) return false;
       if (pivots && refactor(value, pivots)) return true;
-      pivots = choosePivots(pattern, order, value, undefined, scale, tiny);
+      pivots = choosePivots(pattern, order, value, undefined, scale, tiny, onDiagonal ? 0 : enough);
       if (!pivots) return false;
-      l = new Float64Array(pivots.lRow.length);
-      u = new Float64Array(pivots.uRow.length);
+      factors = { l: new Float64Array(pivots.lRow.length), u: new Float64Array(pivots.uRow.length) };
       return refactor(value, pivots);
     },
     solve(b) {
       if (!pivots) return false;
       const { column, place, lStart, lRow, uStart, uRow } = pivots;
+      const { l, u } = factors;
       for (let i = 0; i < n; i++) x[place[i]] = b[i];
       for (let k = 0; k < n; k++) {
         const known = x[k];

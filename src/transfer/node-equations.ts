@@ -1,12 +1,29 @@
 import type { Plant } from "../compile/plant.js";
-import { type SparseComplexLu, sparseComplexLu } from "../numerics/complex-sparse-lu.js";
+import { entryPattern } from "../numerics/entry-pattern.js";
 import { type Adjacency, adjacency } from "../numerics/graph.js";
+import type { ComplexLinearSolver } from "../numerics/linear-solver.js";
+import { sparseComplexSolver } from "../numerics/sparse-lu-complex.js";
 
-/** Nodes that feed one another, with the links between them; without `lu`, one node that does not feed itself. */
+/** Nodes that feed one another, with the links between them; without `circle`, one node that does not feed itself. */
 interface Group {
   readonly nodes: Int32Array;
   readonly links: Int32Array;
-  readonly lu: SparseComplexLu | undefined;
+  readonly circle: Circle | undefined;
+}
+
+/** The equations of a group: entries, where links and diagonal are in them, and their solver. */
+interface Circle {
+  readonly re: Float64Array;
+  readonly im: Float64Array;
+  readonly at: Int32Array;
+  readonly diagonal: Int32Array;
+  readonly solver: ComplexLinearSolver;
+}
+
+function circleOf(size: number, row: Int32Array, column: Int32Array): Circle {
+  const { pattern, at, diagonal } = entryPattern(size, row, column);
+  const [re, im] = [new Float64Array(pattern.column.length), new Float64Array(pattern.column.length)];
+  return { re, im, at, diagonal, solver: sparseComplexSolver(pattern, { tiny: 0, onDiagonal: true }) };
 }
 
 /**
@@ -48,24 +65,24 @@ export class NodeEquations {
       const links = Int32Array.from(inner[g]);
       const row = links.map((k) => place[to[k]]);
       const column = links.map((k) => place[from[k]]);
-      return { nodes: group, links, lu: links.length > 0 ? sparseComplexLu(group.length, row, column) : undefined };
+      return { nodes: group, links, circle: links.length > 0 ? circleOf(group.length, row, column) : undefined };
     });
   }
 
   /** Takes over the gains. False where the equations have no one solution. */
   factor(): boolean {
     const { to } = this.plant;
-    for (const { nodes, links, lu } of this.groups) {
-      if (!lu) continue;
-      lu.re.fill(0);
-      lu.im.fill(0);
-      for (let p = 0; p < nodes.length; p++) lu.re[lu.diagonal[p]] = 1;
+    for (const { nodes, links, circle } of this.groups) {
+      if (!circle) continue;
+      circle.re.fill(0);
+      circle.im.fill(0);
+      for (let p = 0; p < nodes.length; p++) circle.re[circle.diagonal[p]] = 1;
       for (let e = 0; e < links.length; e++) {
         const k = links[e];
-        lu.re[lu.at[e]] -= this.gainRe[to[k]] * this.weight[k];
-        lu.im[lu.at[e]] -= this.gainIm[to[k]] * this.weight[k];
+        circle.re[circle.at[e]] -= this.gainRe[to[k]] * this.weight[k];
+        circle.im[circle.at[e]] -= this.gainIm[to[k]] * this.weight[k];
       }
-      if (!lu.factor()) return false;
+      if (!circle.solver.factor(circle.re, circle.im)) return false;
     }
     return true;
   }
@@ -73,15 +90,15 @@ export class NodeEquations {
   /** Turns b into c, in place. */
   solve(re: Float64Array, im: Float64Array): void {
     for (let g = 0; g < this.groups.length; g++) {
-      const { nodes, lu } = this.groups[g];
+      const { nodes, circle } = this.groups[g];
       for (const i of nodes) this.addBrought(i, g, re, im);
-      if (!lu) continue;
+      if (!circle) continue;
       const { re: wRe, im: wIm } = this.work;
       for (let p = 0; p < nodes.length; p++) {
         wRe[p] = re[nodes[p]];
         wIm[p] = im[nodes[p]];
       }
-      lu.solve(wRe, wIm);
+      circle.solver.solve(wRe, wIm);
       for (let p = 0; p < nodes.length; p++) {
         re[nodes[p]] = wRe[p];
         im[nodes[p]] = wIm[p];
