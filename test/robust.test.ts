@@ -155,7 +155,11 @@ describe("on purpose", () => {
     ["a number beyond numbers", network("{kind: stirred, volume: 1e999 L, to: out}"), ["bad-number"]],
     ["a prototype as a name", network(tank, "constants: {__proto__: 1 L}\n"), ["forbidden-key"]],
     ["a constructor as a name", network(tank, "constants: {constructor: 1 L}\n"), ["unused-name"]],
-    ["names of objects' own", network("{kind: toString, volume: valueOf, to: hasOwnProperty}"), ["wrong-choice"]],
+    [
+      "names of objects' own",
+      network("{kind: toString, volume: valueOf, to: hasOwnProperty}"),
+      ["wrong-choice", "unknown-place"],
+    ],
     ["a kind from the prototype", network("{kind: constructor, volume: 1 L, to: out}"), ["wrong-choice"]],
     ["a tower of powers", network("{kind: stirred, volume: 1 L * 9^9^9^9, to: out}"), ["not-finite"]],
     ["a million letters", network("{kind: stirred, volume: 1 L, to: out}", `notes: ${"x".repeat(1e6)}\n`), []],

@@ -1,5 +1,7 @@
+import { unknownKind } from "../compartments/unknown.js";
 import type { Network } from "../model/network.js";
-import type { Report } from "../problems/report.js";
+import type { Problem } from "../problems/problem.js";
+import { collector, hasErrors } from "../problems/report.js";
 import { nearest } from "../text/nearest.js";
 import type { Dimension } from "../units/dimension.js";
 import { formatQuantity } from "../units/format.js";
@@ -17,7 +19,8 @@ import { topologyOf } from "./topology.js";
 import { closedVessel, feedsAndOutlets, waysThrough } from "./ways.js";
 import { zoneInlets } from "./zones.js";
 
-const rules: readonly Rule[] = [
+/** What must hold before flows can be found. */
+const flowRules: readonly Rule[] = [
   placeNames,
   streamTargets,
   zoneInlets,
@@ -25,8 +28,11 @@ const rules: readonly Rule[] = [
   waysThrough,
   membersReached,
   closedVessel,
-  finiteValues,
   splits,
+];
+
+const otherRules: readonly Rule[] = [
+  finiteValues,
   exchanges,
   parameterBounds,
   requirements,
@@ -36,10 +42,29 @@ const rules: readonly Rule[] = [
   statedVolume,
 ];
 
-/** Runs every rule on a network whose names and values are all bound. */
-export function checkNetwork(network: Network, env: ArrayLike<number>, report: Report): void {
+/**
+ * Runs every rule on a network. What could not be bound in it is unknown and reported; rules say nothing of what hangs on it.
+ * @returns whether its flows can be found
+ */
+export function checkNetwork(
+  network: Network,
+  env: ArrayLike<number>,
+): { readonly problems: Problem[]; readonly flowsKnown: boolean } {
+  const { report, problems } = collector();
   const topology = topologyOf(network);
   const say = (si: number, dimension: readonly number[], own?: Unit) =>
     formatQuantity(si, own?.name === "" ? own : network.units.unitFor(dimension as Dimension), 6);
-  for (const rule of rules) rule(network, report, { topology, nearest, env, say });
+  const aids = { topology, nearest, env, say };
+  for (const rule of flowRules) rule(network, report, aids);
+  const clear = !hasErrors(problems);
+  for (const rule of otherRules) rule(network, report, aids);
+  return { problems, flowsKnown: clear && flowsKnown(network, env) };
+}
+
+/** Is all known that flows are made of? */
+function flowsKnown({ feeds, compartments }: Network, env: ArrayLike<number>): boolean {
+  if (compartments.some((c) => c.kind === unknownKind)) return false;
+  if (feeds.some((f) => !Number.isFinite(env[f.flowSlot]))) return false;
+  const streams = [...feeds, ...compartments].flatMap((n) => n.streams);
+  return streams.every((s) => !s.unknown && (!("value" in s.split) || Number.isFinite(s.split.value.of(env))));
 }

@@ -7,6 +7,7 @@ export const exchanges: Rule = (network, report, { nearest }) => {
   const bodies = new Map(network.compartments.map((c) => [c.name, c]));
   const seen = new Map<string, (typeof network)["at"]>();
   for (const c of network.compartments) {
+    if (!c.kind.exchanges) continue; // told with the shape
     for (const e of c.exchanges) {
       const member = memberOf(network.compartments, e.partner);
       const partner = bodies.get(e.partner) ?? member;

@@ -5,9 +5,12 @@ import type { Rule } from "./rule.js";
 /** Every value can be computed at the start values. What is made of a name that cannot is not told again. */
 export const finiteValues: Rule = (network, report, { env }) => {
   const bad = new Set<string>();
+  const streams = [...network.feeds, ...network.compartments].flatMap((n) => n.streams);
+  const blind = streams.some(({ split }) => "value" in split && split.value.unknown);
   const look = (what: string, value: Value, at: Span = value.at): boolean => {
     const x = value.of(env);
     if (Number.isFinite(x)) return true;
+    if (value.unknown) return false;
     if (!value.uses.some((name) => bad.has(name))) report("not-finite", at, { what, infinite: !Number.isNaN(x) });
     return false;
   };
@@ -21,7 +24,9 @@ export const finiteValues: Rule = (network, report, { env }) => {
         : n.role === "feed-flow"
           ? `the flow of '${n.name.replace(/\.flow$/, "")}'`
           : `'${n.name}'`;
-    if (!look(what, n.value)) bad.add(n.name);
+    // Flows into parts are made of the streams on their way.
+    if (n.role === "inflow" && blind) bad.add(n.name);
+    else if (!look(what, n.value)) bad.add(n.name);
     for (const bound of n.between ?? []) look(`a bound of '${n.name}'`, bound);
   }
   for (const c of network.compartments) {

@@ -22,6 +22,7 @@ export const streamTargets: Rule = (network, report, { nearest }) => {
   const feeds = new Map(network.feeds.map((f) => [f.name, f]));
   for (const node of [...network.feeds, ...network.compartments]) {
     for (const s of node.streams) {
+      if (s.unknown) continue;
       const feed = feeds.get(s.to);
       if (feed && !bodies.has(s.to) && !outlets.has(s.to)) {
         const into = feed.streams.length === 1 ? feed.streams[0].to : undefined;

@@ -15,10 +15,12 @@ export const statedVolume: Rule = (network, report, { env, say }) => {
   // Where a requirement is broken too, that says it better.
   if (!stated || network.requires.some((r) => !(r.slack(env) > 0))) return;
   const wanted = stated.value.of(env);
-  const sum = network.compartments.reduce((total, c) => {
+  const volumes = network.compartments.map((c) => {
     const values = Object.fromEntries(Object.entries(c.values).map(([key, v]) => [key, v.of(env)]));
-    return total + c.kind.volume({ values, counts: c.counts, zones: c.zones });
-  }, 0);
+    return c.kind.volume({ values, counts: c.counts, zones: c.zones });
+  });
+  if (volumes.some((v) => v < 0)) return; // that is told, and this follows
+  const sum = volumes.reduce((total, v) => total + v, 0);
   if (!Number.isFinite(sum - wanted) || Math.abs(sum - wanted) <= stated.within * Math.abs(wanted)) return;
   const text = (volume: number): string => say(volume, dimensions.volume);
   report("volume-off", stated.value.at, { sum: text(sum), stated: text(wanted) });

@@ -9,19 +9,24 @@ export interface Topology {
   readonly streams: Graph;
   /** Streams, and every exchange both ways. */
   readonly ways: Graph;
+  /** Places from which something leads where nobody can tell. */
+  readonly astray: ReadonlySet<number>;
 }
 
-/** Streams to places that do not exist are left out: another check names them. */
+/** A place from which something leads to an end that does not exist, which another check tells, is astray. */
 export function topologyOf(network: Network): Topology {
   const names = [...network.feeds, ...network.compartments, ...network.outlets].map((n) => n.name);
   const index = new Map(names.map((n, i) => [n, i]));
   const from: number[] = [];
   const to: number[] = [];
+  const astray = new Set<number>();
   for (const node of [...network.feeds, ...network.compartments]) {
+    const me = index.get(node.name) as number;
     for (const s of node.streams) {
-      const target = index.get(s.to);
-      if (target !== undefined) {
-        from.push(index.get(node.name) as number);
+      const target = s.unknown ? undefined : index.get(s.to);
+      if (target === undefined) astray.add(me);
+      else {
+        from.push(me);
         to.push(target);
       }
     }
@@ -30,13 +35,15 @@ export function topologyOf(network: Network): Topology {
   const bothTo = [...to];
   for (const c of network.compartments) {
     for (const e of c.exchanges) {
-      const partner = index.get(e.partner) ?? index.get(memberOf(network.compartments, e.partner)?.name ?? "");
-      if (partner === undefined) continue;
       const me = index.get(c.name) as number;
-      bothFrom.push(me, partner);
-      bothTo.push(partner, me);
+      const partner = index.get(memberOf(network.compartments, e.partner)?.name ?? e.partner);
+      if (partner === undefined) astray.add(me);
+      else {
+        bothFrom.push(me, partner);
+        bothTo.push(partner, me);
+      }
     }
   }
   const size = names.length;
-  return { names, index, streams: { size, from, to }, ways: { size, from: bothFrom, to: bothTo } };
+  return { names, index, streams: { size, from, to }, ways: { size, from: bothFrom, to: bothTo }, astray };
 }

@@ -15,32 +15,35 @@ export const feedsAndOutlets: Rule = (network, report) => {
  */
 export const waysThrough: Rule = (network, report, { topology }) => {
   if (network.feeds.length === 0 || network.outlets.length === 0) return;
-  // Without knowing where every stream goes nothing can be said.
-  const places = new Set(network.compartments.filter((c) => c.kind.flows).map((c) => c.name));
-  for (const o of network.outlets) places.add(o.name);
+  if (topology.index.size < topology.names.length) return; // which of two is meant, who knows
   const nodes = [...network.feeds, ...network.compartments];
-  if (topology.index.size < topology.names.length || nodes.some((n) => n.streams.some((s) => !places.has(s.to))))
-    return;
-
   const idle = network.feeds.filter((f) => f.streams.length === 0);
   for (const { name, at } of idle) report("no-way-out", at, { name, feed: true });
   if (idle.length > 0) return;
-  const seen = reachable(topology.ways, network.feeds.keys());
+  const roots = network.feeds.map((f) => topology.index.get(f.name) as number);
+  const seen = reachable(topology.ways, roots);
   const named = (group: readonly number[]) => group.map((i) => topology.names[i]);
   const inside = new Set(network.compartments.filter((c) => c.kind.flows).map((c) => topology.index.get(c.name)));
+  // What may lead anywhere may lead there; an inlet of a part that nothing enters is told at the part.
+  const inlets = new Set(network.groups.flatMap((g) => g.inlets));
   const unreached = groupsOf(topology.ways).filter(
-    ({ members, entered }) => !entered && members.every((i) => inside.has(i) && !seen[i]),
+    ({ members, entered }) =>
+      topology.astray.size === 0 &&
+      !entered &&
+      members.every((i) => inside.has(i) && !seen[i]) &&
+      !(members.length === 1 && inlets.has(topology.names[members[0]])),
   );
   for (const { members } of unreached) report("unreachable", placeOf(network, members[0]), { names: named(members) });
   const stuck = groupsOf(topology.streams).filter(
-    ({ members, round, left }) => round && !left && members.some((i) => seen[i]),
+    ({ members, round, left }) =>
+      round && !left && members.some((i) => seen[i]) && !members.some((i) => topology.astray.has(i)),
   );
   for (const { members } of stuck) report("closed-loop", placeOf(network, members[0]), { names: named(members) });
   const entered = new Set(nodes.flatMap((n) => n.streams.map((s) => s.to)));
-  const ends = network.compartments.filter((c) => c.streams.length === 0 && entered.has(c.name));
+  const ends = network.compartments.filter((c) => c.kind.flows && c.streams.length === 0 && entered.has(c.name));
   for (const { name, at } of ends) report("no-way-out", at, { name, feed: false });
-  if (unreached.length + stuck.length + ends.length > 0) return;
-  const wet = reachable(topology.streams, network.feeds.keys());
+  if (unreached.length + stuck.length + ends.length + topology.astray.size > 0) return;
+  const wet = reachable(topology.streams, roots);
   for (const o of network.outlets) {
     if (!wet[topology.index.get(o.name) as number]) report("outlet-dry", o.at, { name: o.name });
   }
@@ -62,7 +65,8 @@ export const closedVessel: Rule = (network, report, { topology }) => {
   };
   const reached = reachable(bothWays, [topology.index.get(flowing[0]?.name ?? "") ?? 0]);
   const apart = flowing.filter((c) => !reached[topology.index.get(c.name) as number]);
-  if (apart.length > 0) report("closed-apart", apart[0].at, { names: apart.map((c) => c.name), from: flowing[0].name });
+  if (apart.length > 0 && topology.astray.size === 0)
+    report("closed-apart", apart[0].at, { names: apart.map((c) => c.name), from: flowing[0].name });
 };
 
 /** By index in the topology: feeds, compartments, outlets. */

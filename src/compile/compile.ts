@@ -1,5 +1,6 @@
 import { memberOf } from "../model/members.js";
 import { isClosed, type Network } from "../model/network.js";
+import type { Value } from "../model/value.js";
 import { backEdges, stronglyConnected } from "../numerics/graph.js";
 import type { Problem } from "../problems/problem.js";
 import { collector } from "../problems/report.js";
@@ -42,10 +43,49 @@ export function problemFinder(network: Network): (settings: Settings) => Problem
   return (settings) => balance(network, settings, plan).problems;
 }
 
+/**
+ * What makes a network impossible that is no network yet, since something else in it is wrong: as far as it does not hang on
+ * that. What cannot be computed is not told.
+ * @param flows can they be found?
+ */
+export function impossible(network: Network, flows: boolean): Problem[] {
+  const env = evaluateNames(network);
+  const bounded = withoutExplained(network, env);
+  const { report, problems } = collector();
+  const say = sayer(network);
+  volumesOf(bounded, env, report, say);
+  if (flows) balanceFlows(network, env, report, say);
+  valuesInRange(bounded, env, report, say);
+  return problems.filter((p) => p.code !== "not-finite");
+}
+
+/** Without values that share a name with a requirement that does not hold: that says it better. */
+function withoutExplained(network: Network, env: ArrayLike<number>): Network {
+  const broken = network.requires.filter((r) => !(r.slack(env) > 0));
+  if (broken.length === 0) return network;
+  const names = new Set(broken.flatMap((r) => [...r.left.uses, ...r.right.uses]));
+  const open = (v: Value): boolean => !v.uses.some((name) => names.has(name));
+  return {
+    ...network,
+    compartments: network.compartments.map((c) => ({
+      ...c,
+      values: Object.fromEntries(
+        Object.entries(c.values).map(([key, v]) => [key, open(v) ? v : { ...v, of: () => Number.NaN }]),
+      ),
+      exchanges: c.exchanges.filter((e) => open(e.flow)),
+    })),
+  };
+}
+
+const sayer =
+  ({ units }: Network): Say =>
+  (si, dimension) =>
+    formatQuantity(si, units.unitFor(dimension), 6);
+
 function balance(network: Network, settings: Settings, plan?: FlowPlan) {
   const { report, problems } = collector();
   const env = evaluateNames(network, settings);
-  const say: Say = (si, dimension) => formatQuantity(si, network.units.unitFor(dimension), 6);
+  const say = sayer(network);
   const volumes = volumesOf(network, env, report, say);
   const flows = balanceFlows(network, env, report, say, plan);
   valuesInRange(network, env, report, say);

@@ -97,6 +97,8 @@ export interface Stream {
   /** The inlet, or the member of a repeat, by which it enters a body that has several, and the outlet by which it leaves one. */
   readonly enters?: string | undefined;
   readonly leaves?: string | undefined;
+  /** Is it reported that `to` is no place? Then it may be meant to go anywhere. */
+  readonly unknown?: true;
 }
 
 /** Equal flow both ways between a compartment and a partner. */

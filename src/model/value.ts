@@ -23,6 +23,8 @@ export interface Value {
   of(env: Env): number;
   /** One standard deviation as the file states it, in SI; undefined where none is stated. */
   readonly sd: ((env: Env) => number) | undefined;
+  /** Could it not be found? Then it is NaN, and the reason is reported. */
+  readonly unknown?: true;
 }
 
 /** A quantity ready to print: SI value and the unit that people see. */

@@ -3,7 +3,7 @@ import type { Problem } from "../problems/problem.js";
 import { collector, hasErrors, type Report } from "../problems/report.js";
 import { type Files, usualRoot } from "../read/files.js";
 import { checkShape, documentKind } from "../read/shape.js";
-import type { MapNode } from "../read/tree.js";
+import { child, type MapNode } from "../read/tree.js";
 import { readYaml } from "../read/yaml.js";
 import { wholeDocument } from "../resolve/based-on.js";
 import type { DocumentKind } from "../schema/shape.js";
@@ -71,7 +71,7 @@ export function parseDocument<T>(
   text: string | Reading,
   options: ParseOptions & { readonly path: string },
   meaning: Meaning<T>,
-  glance?: (tree: MapNode, report: Report) => void,
+  glance: (tree: MapNode, told: readonly Problem[]) => readonly Problem[] = (tree) => glanceBy(meaning, tree),
 ): Parsed<T> {
   const { report, problems } = collector();
   const reading = typeof text === "string" ? readDocument(text, options.path) : text;
@@ -81,13 +81,21 @@ export function parseDocument<T>(
   if (tree && checkShape(tree, kind, report)) {
     const whole = wholeDocument(tree, kind, filesOf(options.path, options), report);
     document = whole && meaning(whole, report, (more) => problems.push(...more));
-  } else if (tree && glance && documentKind(tree) === kind) {
-    const more = collector();
-    glance(tree, more.report);
+  } else if (tree && documentKind(tree) === kind) {
     // What stands at a place that is already found fault with is an echo.
-    problems.push(...more.problems.filter((p) => !problems.some((q) => overlap(p.at, q.at) || isEmptyValue(p.at, q))));
+    problems.push(
+      ...glance(tree, [...problems]).filter((p) => !problems.some((q) => overlap(p.at, q.at) || isEmptyValue(p.at, q))),
+    );
   }
   return { document: hasErrors(problems) ? undefined : document, problems: inOrder(distinct(problems)) };
+}
+
+/** By the same meaning, whose result nobody wants. */
+function glanceBy<T>(meaning: Meaning<T>, tree: MapNode): Problem[] {
+  if (child(tree, "based-on") || child(tree, "change")) return []; // a variant that is none says too little by itself
+  const { report, problems } = collector();
+  meaning(tree, report, (more) => problems.push(...more));
+  return problems;
 }
 
 /** What several rivals or parts share is told once. */

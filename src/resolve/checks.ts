@@ -2,6 +2,7 @@ import type { Check } from "../model/network.js";
 import type { Report } from "../problems/report.js";
 import { child, itemsOf, type Tree } from "../read/tree.js";
 import { dimensions } from "../units/dimension.js";
+import { unknownValue } from "./unknown.js";
 import { emptyScope, resolveValue, type Scope } from "./value.js";
 
 const subjects = { "mean-time": dimensions.time, volume: dimensions.volume, flow: dimensions.flow } as const;
@@ -22,8 +23,8 @@ export function resolveChecks(
     const equals = resolveValue(child(item, "equals"), subjects[what as keyof typeof subjects], scope, report);
     const written = child(item, "within");
     const within = written ? resolveValue(written, dimensions.ratio, emptyScope, report)?.of([]) : usualWithin;
-    if (!equals || within === undefined) return [];
-    return [{ at: item.at, what: what as keyof typeof subjects, of: of.text, ofAt: of.at, equals, within }];
+    const sound = { equals: equals ?? unknownValue(item.at), within: within ?? usualWithin };
+    return [{ at: item.at, what: what as keyof typeof subjects, of: of.text, ofAt: of.at, ...sound }];
   });
   return { checks, checkNames: checks.flatMap((c) => c.equals.uses) };
 }

@@ -5,8 +5,11 @@ import type { Report } from "../problems/report.js";
 import type { Files } from "../read/files.js";
 import { child, type MapNode, type Tree, textOf } from "../read/tree.js";
 import type { KeyShape } from "../schema/shape.js";
+import { nearest } from "../text/nearest.js";
+import type { Span } from "../text/source.js";
 import { dimensionsOf } from "./names.js";
 import { resolveExchanges, resolveStreams } from "./streams.js";
+import { unknownBody, unknownValue } from "./unknown.js";
 import { resolveValue, type Scope } from "./value.js";
 import { defaultTolerance, resolveZones, zoneStreams } from "./zones.js";
 
@@ -19,20 +22,23 @@ export function resolveCompartment(
   env: ArrayLike<number>,
   files: Files,
   report: Report,
-): Compartment | undefined {
+): Compartment {
   const kindName = textOf(node, "kind") ?? "";
-  const kind = Object.hasOwn(kinds, kindName) ? kinds[kindName] : undefined;
-  if (!kind) return undefined; // the shape check has said so
-  const keys = resolveKeys(kind.keys, node, scope, report);
+  // Of another kind the shape check tells; what is meant tells what else there is to look at.
+  const meant = Object.hasOwn(kinds, kindName) ? kindName : nearest(kindName, Object.keys(kinds));
+  const kind = meant === undefined || kinds[meant].placed ? undefined : kinds[meant];
+  if (!kind) return unknownBody(name, at, node);
+  const keys = resolveKeys(kind.keys, node, at, scope, report);
   const tolerance = keys.values.tolerance?.of(env) ?? defaultTolerance;
   const zones = kind.zoned && resolveZones(name, at, node, tolerance, files, report);
+  if (kind.zoned && !zones) return unknownBody(name, at, node);
   const streams = kind.zoned ? [] : resolveStreams(child(node, "to"), scope, report);
   return {
     name,
     at,
     kind,
     ...keys,
-    zones,
+    zones: zones || undefined,
     streams: zones ? zoneStreams(name, child(node, "to"), zones, report) : streams,
     exchanges: resolveExchanges(child(node, "exchange"), scope, report),
     toAt: child(node, "to")?.at ?? at,
@@ -45,6 +51,7 @@ type Keys = Pick<Compartment, "values" | "counts" | "words">;
 function resolveKeys(
   keys: Readonly<Record<string, KeyShape>>,
   node: Tree | undefined,
+  at: Span,
   scope: Scope,
   report: Report,
   within = "",
@@ -52,20 +59,25 @@ function resolveKeys(
   const values: Record<string, Value> = {};
   const counts: Record<string, number> = {};
   const words: Record<string, string> = {};
-  for (const [key, { shape }] of Object.entries(keys)) {
+  for (const [key, { shape, required }] of Object.entries(keys)) {
     const written = child(node, key);
-    if (!written) continue;
     const name = within + key;
-    if (shape.is === "quantity") {
+    if (shape.is === "quantity" && (written || required)) {
       const value = resolveValue(written, dimensionsOf(shape.dimension), scope, report);
-      if (value) values[name] = value;
-    } else if (shape.is === "record") {
-      const inside = resolveKeys(shape.keys, written, scope, report, `${name}.`);
+      values[name] = value ?? unknownValue(written?.at ?? node?.at ?? at);
+    }
+    if (!written || shape.is === "quantity") continue;
+    if (shape.is === "record") {
+      const inside = resolveKeys(shape.keys, written, at, scope, report, `${name}.`);
       Object.assign(values, inside.values);
       Object.assign(counts, inside.counts);
       Object.assign(words, inside.words);
-    } else if (shape.is === "whole" && written.type === "scalar") counts[name] = Number(written.text);
-    else if (shape.is === "choice" && written.type === "scalar") words[name] = written.text;
+    } else if (shape.is === "whole" && written.type === "scalar") {
+      const count = Number(written.text);
+      // Another is told with the shape.
+      if (Number.isInteger(count) && count <= (shape.atMost ?? Number.MAX_SAFE_INTEGER)) counts[name] = count;
+    }
+    if (shape.is === "choice" && written.type === "scalar") words[name] = written.text;
   }
   return { values, counts, words };
 }

@@ -8,6 +8,7 @@ import { lostParts } from "./lost.js";
 import type { Instance, Part } from "./part.js";
 import { aimStreams, isPlace, type PartWays, partWays, unfedInlets } from "./ports.js";
 import { resolveStreams } from "./streams.js";
+import { unknownBody } from "./unknown.js";
 import type { Scope } from "./value.js";
 
 /** What one document declares, under its own names; streams to a part end at one of its inlets (`core.feed`). */
@@ -57,10 +58,10 @@ export function resolveLocal(
     checkName(key, report);
     const part = parts.get(key.text);
     if (part) return [{ part, ways: partWays(part, scope, report) }];
+    if (value.type !== "map") return [];
     // A part that could not be opened is told already.
-    if (value.type !== "map" || lost.has(key.text)) return [];
-    const body = resolveCompartment(key.text, key.at, value, scope, env, files, report);
-    return body ? [body] : [];
+    if (lost.has(key.text)) return [unknownBody(key.text, key.at, value)];
+    return [resolveCompartment(key.text, key.at, value, scope, env, files, report)];
   });
   const outlets = itemsOf(child(tree, "outlets")).flatMap((item): Outlet[] => {
     if (item.type !== "scalar") return [];

@@ -7,6 +7,7 @@ import { type Declared, declareNames } from "./declare.js";
 import { dependencyOrder } from "./dependency-order.js";
 import type { Instance } from "./part.js";
 import { needsOf, shareNames } from "./shared-names.js";
+import { unknownValue } from "./unknown.js";
 import { resolveValue, type Scope } from "./value.js";
 
 /** The values of a network that have names, resolved in an order in which each needs only earlier ones. */
@@ -21,7 +22,7 @@ export interface ResolvedNames {
   scope(prefix: string): Scope;
 }
 
-/** Constants, parameters and flows of feeds, of a document and of all its parts. Broken ones are reported and left out. */
+/** Constants, parameters and flows of feeds, of a document and of all its parts. Broken ones are reported and unknown. */
 export function resolveNames(instances: readonly Instance[], report: Report): ResolvedNames {
   const { declared, slots } = shareNames(declareNames(instances, report));
   const found = new Map<number, Dimension>();
@@ -48,16 +49,22 @@ export function resolveNames(instances: readonly Instance[], report: Report): Re
     const { node, prefix, role } = declared[slot];
     const wanted = replacedDimension(declared[slot], scope) ?? declared[slot].wanted;
     const value = role === "inflow" ? undefined : resolveValue(node, wanted, scope(prefix), report);
-    if (!value) continue;
-    values.set(slot, value);
-    found.set(slot, value.dimension);
+    if (value) {
+      values.set(slot, value);
+      found.set(slot, value.dimension);
+    } else if (wanted !== "any") found.set(slot, wanted); // so much is known of what has no value
   }
   // Bounds may use any name, so they come when all are known.
   const names = declared.flatMap((d, slot): Named[] => {
+    if (d.role === "inflow") return [];
+    const { name, role, at } = d;
     const value = values.get(slot);
-    if (!value || d.role === "inflow") return [];
+    if (!value) {
+      const unknown = unknownValue(d.node?.at ?? at, found.get(slot));
+      return [{ name, slot, role, at, value: unknown, between: undefined, spacing: "linear", about: undefined }];
+    }
     sameAsReplaced(d, value, scope, report);
-    return [{ name: d.name, slot, role: d.role, at: d.at, value, ...details(d, value, scope(d.prefix), report) }];
+    return [{ name, slot, role, at, value, ...details(d, value, scope(d.prefix), report) }];
   });
   return { names, inflows: declared.filter((d) => d.role === "inflow"), needs, slots, scope };
 }
@@ -84,7 +91,7 @@ function details(
   const spacing = textOf(d.details, "spacing") === "log" ? "log" : "linear";
   const node = child(d.details, "between");
   let between: [Value, Value] | undefined;
-  if (node?.type === "list") {
+  if (node?.type === "list" && node.items.length === 2) {
     const [low, high] = node.items.map((item) => resolveValue(item, value.dimension, scope, report));
     if (low && high) between = [low, high];
   }

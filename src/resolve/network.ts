@@ -36,7 +36,10 @@ export function resolveNetwork(tree: MapNode, path: string, report: Report, file
     declared.map((n) => n.value),
     compartments,
   );
+  const bySlot = new Map(declared.map((n) => [n.slot, n]));
   const used = new Set([
+    // What stands in a value that is none is used all the same.
+    ...declared.flatMap((n) => (n.value.unknown ? needs[n.slot].flatMap((slot) => bySlot.get(slot)?.name ?? []) : [])),
     ...[...values, ...declared.flatMap((n) => n.between ?? [])].flatMap((v) => v.uses),
     ...requires.flatMap((r) => r.requireNames),
     ...checkNames,

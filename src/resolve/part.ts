@@ -101,10 +101,11 @@ function open(
     const outlets = itemsOf(child(whole, "outlets")).flatMap((o) => (o.type === "scalar" ? [o.text] : []));
     const written = Number(textOf(node, "repeat") ?? 1);
     // What is no whole number is told with the shape; the rest of the document is looked at all the same.
-    const repeat = Number.isInteger(written) && written >= 1 ? written : 1;
+    let repeat = Number.isInteger(written) && written >= 1 ? written : 1;
     if (repeat > 1 && (inlets.length !== 1 || outlets.length !== 1)) {
       const data = { part: key.text, inlets: inlets.length, outlets: outlets.length };
       report("repeat-ports", child(node, "repeat")?.at ?? key.at, data);
+      repeat = 1;
     }
     const within = { prefix: `${names.prefix}${key.text}.`, shared: `${names.shared}${key.text}.` };
     const apart = repeat > 1 && targets.some((t) => isPastFirst(t, key.text));

@@ -1,10 +1,11 @@
 import { memberOf } from "../model/members.js";
 import type { Compartment, Stream } from "../model/network.js";
 import type { Report } from "../problems/report.js";
-import { child } from "../read/tree.js";
+import { child, entriesOf } from "../read/tree.js";
 import { nearest } from "../text/nearest.js";
 import type { Part } from "./part.js";
 import { resolveStreams } from "./streams.js";
+import { nowhere } from "./unknown.js";
 import type { Scope } from "./value.js";
 import { aimStreams as aimAtZones } from "./zones.js";
 
@@ -34,12 +35,16 @@ export function aimStreams(from: string, streams: readonly Stream[], places: Pla
   ).map((s) => {
     const [name, ...rest] = s.to.split(".");
     const part = places.parts.get(name);
-    if (part) return { ...s, to: inletOf(part, rest.join("."), s, report) };
+    if (s.unknown) return s;
+    if (part) {
+      const to = inletOf(part, rest.join("."), s, report);
+      return to === undefined ? { ...s, unknown: true } : { ...s, to };
+    }
     const body = memberOf(places.bodies, s.to);
     // What enters the first member enters the body.
     if (body) return { ...s, to: body.name, ...(s.to.endsWith(".1") ? {} : { enters: rest.join(".") }) };
-    if (places.check && !places.lost.has(name)) mustExist(from, s, places, report);
-    return s;
+    if (places.lost.has(name)) return { ...s, to: name };
+    return places.check && !mayEnter(from, s, places, report) ? { ...s, unknown: true } : s;
   });
 }
 
@@ -50,7 +55,8 @@ export const isPlace = (to: string, { feeds, bodies, parts, outlets }: Places): 
   bodies.some((b) => b.name === to) ||
   [...parts.values()].some((p) => p.inlets.some((inlet) => to.startsWith(`${p.name}.`) && to.endsWith(`.${inlet}`)));
 
-function inletOf(part: Part, port: string, { to, at }: Stream, report: Report): string {
+/** The inlet of a part; undefined, and reported, where it has none so. */
+function inletOf(part: Part, port: string, { at }: Stream, report: Report): string | undefined {
   const { name, inlets: known } = part;
   if (port === "" && known.length === 1) return `${firstOf(part)}.${known[0]}`;
   if (port === "") report("port-open", at, { part: name, side: "inlet", known });
@@ -60,29 +66,31 @@ function inletOf(part: Part, port: string, { to, at }: Stream, report: Report): 
     if (isRepeat(part, number) && known.includes(inlet) && more.length === 0) return `${name}.${number}.${inlet}`;
     report("unknown-port", at, { name: port, part: name, side: "inlet", nearest: nearest(port, known), known });
   }
-  return to;
+  return undefined;
 }
 
 /** Is it the number of one of a part's repeats? */
 const isRepeat = ({ repeat }: Part, number: string): boolean =>
   repeat > 1 && /^[1-9]\d*$/.test(number) && Number(number) <= repeat;
 
-function mustExist(
+/** Reports where a stream goes to no place that may be entered; true where it does. */
+function mayEnter(
   from: string,
   { to, at }: Stream,
   { feeds, bodies, parts, lost, outlets }: Places,
   report: Report,
-): void {
+): boolean {
   const body = bodies.find((b) => b.name === to);
   const feed = feeds.get(to);
-  if (body || outlets.includes(to)) return;
+  if (body || outlets.includes(to)) return true;
   if (feed) {
     const enters = feed.streams.length === 1 ? feed.streams[0].to : undefined;
     report("into-feed", at, { name: to, from, enters });
-    return;
+    return false;
   }
   const known = [...bodies.map((b) => b.name), ...parts.keys(), ...lost, ...outlets];
   report("unknown-place", at, { name: to, wanted: "compartment or outlet", nearest: nearest(to, known), known });
+  return false;
 }
 
 /** Reads the `to:` of a part: one name for its one outlet, or a map from outlets to a name or a split. */
@@ -92,11 +100,9 @@ export function partWays({ name, at, node, outlets }: Part, scope: Scope, report
   if (to?.type === "scalar" && !to.empty) {
     if (outlets.length === 1) ways.set(outlets[0], [{ to: to.text, at: to.at, split: { is: "all" } }]);
     else report("port-open", to.at, { part: name, side: "outlet", known: outlets });
-    return ways;
   }
-  if (to?.type !== "map") return ways;
-  let clear = true;
-  for (const { key, value } of to.entries) {
+  let clear = to?.type === "map";
+  for (const { key, value } of entriesOf(to)) {
     if (!outlets.includes(key.text)) {
       clear = false;
       const near = nearest(key.text, outlets);
@@ -106,10 +112,14 @@ export function partWays({ name, at, node, outlets }: Part, scope: Scope, report
       ways.set(key.text, [{ to: value.text, at: value.at, split: { is: "all" } }]);
     } else {
       report("not-a-place", value.at, { outlet: key.text, text: value.type === "scalar" ? value.text : "a list" });
-      ways.set(key.text, []);
+      ways.set(key.text, [nowhere(value.at)]);
     }
   }
-  if (clear) for (const o of outlets) if (!ways.has(o)) report("outlet-unmapped", at, { part: name, outlet: o });
+  for (const o of outlets) {
+    if (ways.has(o)) continue;
+    if (clear) report("outlet-unmapped", at, { part: name, outlet: o });
+    ways.set(o, [nowhere(to?.at ?? at)]);
+  }
   return ways;
 }
 

@@ -2,6 +2,7 @@ import type { Exchange, Stream } from "../model/network.js";
 import type { Report } from "../problems/report.js";
 import { entriesOf, type Tree } from "../read/tree.js";
 import { dimensions } from "../units/dimension.js";
+import { unknownStream, unknownValue } from "./unknown.js";
 import { resolveValue, type Scope } from "./value.js";
 
 /** A `to:`: one name takes all, a map splits. Names are looked up later, when all are known. */
@@ -16,7 +17,10 @@ export function resolveStreams(node: Tree | undefined, scope: Scope, report: Rep
     }
     // The dimension of the value tells a share from a flow.
     const amount = resolveValue(value, [dimensions.ratio, dimensions.flow], scope, report);
-    if (!amount) continue;
+    if (!amount) {
+      streams.push(unknownStream(key.text, key.at));
+      continue;
+    }
     const is = amount.dimension.every((x) => x === 0) ? "share" : "flow";
     streams.push({ to: key.text, at: key.at, split: { is, value: amount } });
   }
@@ -25,8 +29,8 @@ export function resolveStreams(node: Tree | undefined, scope: Scope, report: Rep
 
 /** An `exchange:`: partner -> flow, equal both ways. */
 export function resolveExchanges(node: Tree | undefined, scope: Scope, report: Report): Exchange[] {
-  return entriesOf(node).flatMap(({ key, value }) => {
-    const flow = resolveValue(value, dimensions.flow, scope, report);
-    return flow ? [{ partner: key.text, at: key.at, flow }] : [];
+  return entriesOf(node).map(({ key, value }) => {
+    const flow = resolveValue(value, dimensions.flow, scope, report) ?? unknownValue(value.at, dimensions.flow);
+    return { partner: key.text, at: key.at, flow };
   });
 }

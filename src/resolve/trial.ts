@@ -59,6 +59,7 @@ export function resolveTrial(
   });
   const flows = values(child(tree, "flows"), dimensions.flow, scope, report);
   for (const flow of flows.values()) if (flow.uses.length === 0) aboveZero("the flow of a feed", flow, true, report);
+  const settings = values(child(tree, "with"), "any", scope, report);
   const whole = [...injections, ...readings].every((part) => part !== undefined);
   if (!whole || (child(tree, "contents") && !contents)) return undefined;
   return {
@@ -68,7 +69,7 @@ export function resolveTrial(
     vessel: vesselPath(child(tree, "vessel")),
     vesselAt: child(tree, "vessel")?.at,
     flows,
-    with: values(child(tree, "with"), "any", scope, report),
+    with: settings,
     injections: injections.filter((part) => part !== undefined),
     ...(contents ? { contents } : {}),
     readings: readings.filter((part) => part !== undefined),

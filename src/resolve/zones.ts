@@ -13,6 +13,7 @@ import type { Span } from "../text/source.js";
 import { type Dimension, dimensions } from "../units/dimension.js";
 import type { Unit } from "../units/unit.js";
 import { column, csvOptions } from "./trial-table.js";
+import { nowhere } from "./unknown.js";
 import { resolveUnit } from "./value.js";
 import { balanceZones } from "./zone-balance.js";
 import { readCells, readFlows } from "./zone-cells.js";
@@ -92,13 +93,14 @@ export function zoneStreams(name: string, to: Tree | undefined, zones: ZoneTable
   if (to.type === "scalar") {
     if (outlets.length === 1) return [{ to: to.text, at: to.at, split: { is: "all" }, leaves: known[0] }];
     report("zone-outlets", to.at, { name, outlets: known, to: to.text }, { at: outlets[1].at, says: "this one, say" });
-    return [];
+    return [nowhere(to.at)];
   }
   const total = outlets.reduce((sum, t) => sum + t.flow, 0);
   const streams: Stream[] = [];
   for (const { key, value } of to.entries) {
     const outlet = outlets.find((t) => t.name === key.text);
     if (!outlet) {
+      streams.push(nowhere(key.at));
       const near = nearest(key.text, known);
       report("zone-no-outlet", key.at, { name, outlet: key.text, known, nearest: near });
     } else if (value.type === "scalar") {
@@ -110,8 +112,9 @@ export function zoneStreams(name: string, to: Tree | undefined, zones: ZoneTable
   }
   const allKnown = to.entries.every(({ key }) => known.includes(key.text));
   for (const { name: outlet, at } of allKnown ? outlets : []) {
-    if (!to.entries.some((e) => e.key.text === outlet))
-      report("zone-outlet-open", to.at, { name, outlet, known }, { at, says: "the table names it here" });
+    if (to.entries.some((e) => e.key.text === outlet)) continue;
+    streams.push(nowhere(to.at));
+    report("zone-outlet-open", to.at, { name, outlet, known }, { at, says: "the table names it here" });
   }
   return streams;
 }

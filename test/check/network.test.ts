@@ -102,9 +102,9 @@ describe("a fault is told where it begins, and once", () => {
       ["unknown-place bb"],
     ],
     [
-      "an unknown name in a volume hides what cannot be judged",
+      "an unknown name in a volume hides no share that is wrong",
       vessel("a: {kind: stirred, volume: v, to: {out: 120 %}}"),
-      ["unknown-name v"],
+      ["unknown-name v", "share-range 120 %"],
     ],
     [
       "a corner of a corner",
