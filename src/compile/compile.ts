@@ -1,7 +1,7 @@
 import { memberOf } from "../model/members.js";
 import { isClosed, type Network } from "../model/network.js";
 import type { Value } from "../model/value.js";
-import { backEdges, stronglyConnected } from "../numerics/graph.js";
+import { backEdges } from "../numerics/graph.js";
 import type { Problem } from "../problems/problem.js";
 import { collector } from "../problems/report.js";
 import { formatQuantity } from "../units/format.js";
@@ -11,21 +11,26 @@ import type { Plant, PlantStream, Settings } from "./plant.js";
 import { valuesInRange, volumesOf } from "./ranges.js";
 import type { Say } from "./say.js";
 import { spellOut } from "./spell.js";
+import { Structure } from "./structure.js";
 
 /**
  * Balances a network and spells it out in primitive nodes.
  * @param settings values to use in place of the file's, SI, by name (`bypass`, `feed.flow`)
- * @param plan     of the flows, where it is known
  * @returns no plant, and the reasons as problems, where values make a volume or flow impossible; never throws
  */
-export function compile(
+export function compile(network: Network, settings: Settings = {}): { plant: Plant | undefined; problems: Problem[] } {
+  return compileWith(network, settings, undefined, undefined);
+}
+
+function compileWith(
   network: Network,
-  settings: Settings = {},
-  plan?: FlowPlan,
+  settings: Settings,
+  plan: FlowPlan | undefined,
+  known: Structure | undefined,
 ): { plant: Plant | undefined; problems: Problem[] } {
   const { env, volumes, flows, problems } = balance(network, settings, plan);
   if (!flows || problems.length > 0) return { plant: undefined, problems };
-  return { plant: plantOf(network, env, volumes, flows), problems };
+  return { plant: plantOf(network, env, volumes, flows, known), problems };
 }
 
 /** `compile` for many settings of one network: what does not depend on values is found once. */
@@ -34,7 +39,15 @@ export function compiler(network: Network): {
   plan: FlowPlan;
 } {
   const plan = flowPlan(network);
-  return { compile: (settings) => compile(network, settings, plan), plan };
+  let known: Structure | undefined;
+  return {
+    plan,
+    compile: (settings) => {
+      const compiled = compileWith(network, settings, plan, known);
+      known = compiled.plant?.structure ?? known;
+      return compiled;
+    },
+  };
 }
 
 /** Tells of many settings what makes a network impossible there; nothing where `compile` would give a plant. */
@@ -92,7 +105,13 @@ function balance(network: Network, settings: Settings, plan?: FlowPlan) {
   return { env, volumes, flows, problems };
 }
 
-function plantOf(network: Network, env: Float64Array, volumes: Float64Array, flows: Flows): Plant {
+function plantOf(
+  network: Network,
+  env: Float64Array,
+  volumes: Float64Array,
+  flows: Flows,
+  known: Structure | undefined,
+): Plant {
   const spelled = spellOut(network, env, flows);
   const { nodes, from, to, flow } = spelled;
   const inflow = new Float64Array(nodes.size);
@@ -106,7 +125,8 @@ function plantOf(network: Network, env: Float64Array, volumes: Float64Array, flo
   let active = 0;
   for (let i = 0; i < nodes.size; i++) if (closed || inflow[i] > 0) active += nodes.volume[i];
   let made: Plant["nodes"] | undefined;
-  let groups: Plant["groups"] | undefined;
+  const part = nodes.part.subarray(0, nodes.size);
+  const structure = known?.orNew(part, from, to) ?? new Structure(part, from, to);
   let streams: PlantStream[] | undefined;
   const offset = network.feeds.length + network.compartments.length;
   return {
@@ -118,7 +138,7 @@ function plantOf(network: Network, env: Float64Array, volumes: Float64Array, flo
     },
     columns: {
       size: nodes.size,
-      part: nodes.part.subarray(0, nodes.size),
+      part,
       volume: nodes.volume.subarray(0, nodes.size),
       inflow,
       nameOf: (i) => nodes.nameOf(i),
@@ -135,9 +155,9 @@ function plantOf(network: Network, env: Float64Array, volumes: Float64Array, flo
     })),
     entry: spelled.entry,
     exit: spelled.exit,
+    structure,
     get groups() {
-      groups ??= stronglyConnected({ size: nodes.size, from, to });
-      return groups;
+      return structure.groups;
     },
     get streams() {
       streams ??= streamsOf(network, env, flows);

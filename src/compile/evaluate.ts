@@ -6,9 +6,8 @@ import type { Settings } from "./plant.js";
 /** Values of all names, SI, one slot each: the file's own, or those in `settings`. */
 export function evaluateNames(network: Network, settings: Settings = {}): Float64Array {
   const env = new Float64Array(network.names.reduce((size, n) => Math.max(size, n.slot + 1), 0));
-  const bySlot = new Map(network.names.map((n) => [n.slot, n]));
   for (const slot of network.order) {
-    const n = bySlot.get(slot);
+    const n = network.names[slot]?.slot === slot ? network.names[slot] : network.names.find((m) => m.slot === slot);
     if (n) env[slot] = settings[n.name] ?? n.value.of(env);
   }
   return env;

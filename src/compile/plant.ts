@@ -1,11 +1,9 @@
 import type { Block } from "../compartments/block.js";
 import type { Network } from "../model/network.js";
+import type { Part } from "./part.js";
+import type { Structure } from "./structure.js";
 
-/**
- * What a node of a plant is to an engine: a mixed volume, a transport delay, a meeting of streams without volume, or a
- * block: a body that is known by its transfer function alone.
- */
-export const Part = { Cell: 0, Delay: 1, Joint: 2, Block: 3 } as const;
+export { Part } from "./part.js";
 
 /**
  * A balanced, compiled network: primitive nodes and the steady flows between them, SI.
@@ -27,6 +25,8 @@ export interface Plant {
   /** name in the file (compartment, feed, outlet, `chain.2`) -> node whose outflow it stands for, and where it is entered. */
   readonly entry: ReadonlyMap<string, number>;
   readonly exit: ReadonlyMap<string, number>;
+  /** What of it does not depend on values; shared by the plants that a `compiler` makes. */
+  readonly structure: Structure;
   /** Strongly connected groups of nodes in flow order (Tarjan 1972); a group of one without a self-link is feed-forward. */
   readonly groups: readonly Int32Array[];
   /** Named streams with their flows, as the file has them: for tables and drawings. m3/s. */

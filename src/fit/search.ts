@@ -26,13 +26,20 @@ export interface SearchResult {
   readonly cancelled: boolean;
 }
 
-/** Ends of rough descents that are worth a closer one. */
+/**
+ * Ends of rough descents that are worth a closer one: so many at most, the first so many in any case, the others as far as their
+ * sum of squares is within this factor of the least.
+ */
 const closer = 4;
+const always = 2;
+/** Starts of one sort are taken in the order of their sums of squares, until so many have ended at the best end known before. */
+const enough = 3;
+const near = 10;
 
 /**
  * The best of many descents: a rough one from the file's values, then from every sampling gap of the tubes about its end (what
- * else the data fix is in place by then) and from points drawn inside the bounds; a closer one from the best ends that differ; hops of one sampling gap to both sides along the delays for as long as that finds better; a full one
- * from the best.
+ * else the data fix is in place by then) and from points drawn inside the bounds; a closer one from the best ends that differ;
+ * hops of one sampling gap to both sides along the delays for as long as that finds better; a full one from the best.
  */
 export function searchFrom(problem: Problem, file: Float64Array, plan: StartPlan, watch: Watch): SearchResult {
   const { setup } = problem;
@@ -40,9 +47,13 @@ export function searchFrom(problem: Problem, file: Float64Array, plan: StartPlan
   const rough: Optimum[] = [];
   let planned = 1 + (plan.others ?? 0);
   const descendFrom = (starts: readonly Float64Array[]): void => {
+    let again = 0;
     for (const start of starts) {
-      if (watch.cancelled() && rough.length > 0) return;
-      rough.push(descend(problem, start, roughly, watch));
+      if ((watch.cancelled() && rough.length > 0) || again === enough) return;
+      const end = descend(problem, start, roughly, watch);
+      const least = rough.reduce((best: Optimum | undefined, r) => (best && best.sum <= r.sum ? best : r), undefined);
+      if (least && samePlace(least, end, 1e-3)) again++;
+      rough.push(end);
       const best = Math.min(...rough.map((r) => r.sum));
       watch.progress({ start: rough.length, starts: planned, best, evaluations: setup.cost.evaluations });
     }
@@ -65,7 +76,9 @@ export function searchFrom(problem: Problem, file: Float64Array, plan: StartPlan
   const ends = distinct(
     distinct(rough, 1e-2)
       .slice(0, closer)
-      .map((c) => ({ ...descend(problem, c.x, closely, watch), reached: c.reached })),
+      .map((c, i, [best]) =>
+        i < always || c.sum < near * best.sum ? { ...descend(problem, c.x, closely, watch), reached: c.reached } : c,
+      ),
     1e-3,
   );
   if (ends.length === 0) return { best: undefined, optima: [], cancelled: watch.cancelled() };
@@ -83,6 +96,8 @@ function betterHalf(problem: Problem, starts: readonly Float64Array[], watch: Wa
   const possible = rated.filter((r) => Number.isFinite(r.sum)).sort((a, b) => a.sum - b.sum);
   return possible.slice(0, Math.ceil(starts.length / 2)).map((r) => r.x);
 }
+
+const samePlace = (a: Optimum, b: Optimum, apart: number): boolean => a.x.every((v, j) => Math.abs(v - b.x[j]) < apart);
 
 interface Effort {
   readonly tolerance: number;
@@ -128,7 +143,7 @@ function distinct(ends: readonly Optimum[], apart: number): Optimum[] {
   const kept: Optimum[] = [];
   for (const end of [...ends].sort((a, b) => a.sum - b.sum)) {
     if (!Number.isFinite(end.sum)) continue;
-    const same = kept.findIndex((k) => k.x.every((v, j) => Math.abs(v - end.x[j]) < apart));
+    const same = kept.findIndex((k) => samePlace(k, end, apart));
     if (same < 0) kept.push(end);
     else kept[same] = { ...kept[same], reached: kept[same].reached + end.reached };
   }

@@ -21,7 +21,8 @@ const mostSteps = 40;
 
 /**
  * Where tubes put their front between two samples: the sum of squares is flat there and jumps as the front crosses a sample, so
- * a search must begin once in every gap. For each delay the parameter that moves it most is walked at start values of the others.
+ * a search must begin once in every gap. For each delay the parameter that moves it most, there and then, is walked at start
+ * values of the others.
  */
 export function delayWalks(setup: Setup, from: Float64Array): DelayWalk[] {
   const n = setup.coordinates.length;
@@ -29,20 +30,20 @@ export function delayWalks(setup: Setup, from: Float64Array): DelayWalk[] {
     delays(setup, from, j, c.draw[0]),
     delays(setup, from, j, c.draw[1]),
   ]);
+  const beside = setup.coordinates.map(({ draw: [a, b] }, j) =>
+    [-1, 1].map((side) => delays(setup, from, j, Math.min(b, Math.max(a, from[j] + 0.02 * side * (b - a))))),
+  );
   const count = Math.max(0, ...ranges.flat().map((d) => d.length));
   const gap = typicalGap(setup);
   const chosen = new Map<number, number>();
   for (let d = 0; d < count; d++) {
-    let best = -1;
-    let most = gap;
-    for (let j = 0; j < n; j++) {
-      const moved = Math.abs((ranges[j][1][d] ?? 0) - (ranges[j][0][d] ?? 0));
-      if (Number.isFinite(moved) && moved > most) {
-        most = moved;
-        best = j;
-      }
-    }
-    if (best >= 0) chosen.set(best, Math.max(chosen.get(best) ?? 0, most));
+    const moved = ([low, high]: number[][]): number => Math.abs((high[d] ?? 0) - (low[d] ?? 0));
+    const able = Array.from({ length: n }, (_, j) => j).filter((j) => {
+      const most = moved(ranges[j]);
+      return Number.isFinite(most) && most > gap;
+    });
+    const [best] = able.sort((i, j) => moved(beside[j]) - moved(beside[i]));
+    if (best !== undefined) chosen.set(best, Math.max(chosen.get(best) ?? 0, moved(ranges[best])));
   }
   return [...chosen].map(([index, moved]) => {
     const steps = Math.min(mostSteps, Math.ceil(moved / gap));

@@ -55,8 +55,12 @@ export class DenseSteps {
    */
   advance(v: Float64Array, h: number, slack: number): number {
     if (!(h > 0)) return h;
-    const near = (s: Step): boolean => Math.abs(s.h - h) <= slack;
-    let step = this.last && near(this.last) ? this.last : this.kept.find(near);
+    const { last } = this;
+    if (last && Math.abs(last.h - h) <= slack) {
+      this.apply(last.matrix, v);
+      return last.h;
+    }
+    let step = this.kept.find((s) => Math.abs(s.h - h) <= slack);
     if (!step && !(Math.abs(this.once - h) <= slack) && this.rate * h <= longest) {
       this.once = h;
       this.series(v, h);
@@ -92,6 +96,8 @@ export class DenseSteps {
 
   private apply(e: Float64Array, v: Float64Array): void {
     const { n, length, scratch } = this;
+    if (n === 1) return this.applyToOne(e, v);
+    if (n === 2) return this.applyToTwo(e, v);
     for (let i = 0; i < n; i++) {
       let sum = 0;
       for (let j = 0; j < n; j++) sum += e[i * n + j] * v[j];
@@ -106,6 +112,30 @@ export class DenseSteps {
       }
     }
     v.set(scratch);
+  }
+
+  private applyToOne(e: Float64Array, v: Float64Array): void {
+    const x = v[0];
+    v[0] = e[0] * x;
+    for (let p = 1; p < this.length; p++) v[p] = e[0] * v[p] + e[p] * x;
+  }
+
+  private applyToTwo(e: Float64Array, v: Float64Array): void {
+    const e0 = e[0];
+    const e1 = e[1];
+    const e2 = e[2];
+    const e3 = e[3];
+    const x = v[0];
+    const y = v[1];
+    v[0] = e0 * x + e1 * y;
+    v[1] = e2 * x + e3 * y;
+    for (let p = 2; p < this.length; p += 2) {
+      const a = v[p];
+      const b = v[p + 1];
+      const d = 2 * p;
+      v[p] = e0 * a + e1 * b + e[d] * x + e[d + 1] * y;
+      v[p + 1] = e2 * a + e3 * b + e[d + 2] * x + e[d + 3] * y;
+    }
   }
 
   private exponential(h: number): Float64Array {

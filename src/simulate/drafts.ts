@@ -1,5 +1,4 @@
 import type { Plant } from "../compile/plant.js";
-import type { Adjacency } from "../numerics/graph.js";
 import type { Blend } from "./joints.js";
 
 /** A concentration as a sum over states, and what of it passes undispersed. */
@@ -27,7 +26,6 @@ export interface UnrollPlan {
   /** The part of the tracer that is put into each node. */
   readonly put: ReadonlyMap<number, number>;
   readonly blends: readonly (Blend | undefined)[];
-  readonly into: Adjacency;
   readonly copies: readonly Copy[];
 }
 

@@ -33,20 +33,26 @@ export class DrivenSteps {
     this.start = b.map((x) => x * drive.amount);
   }
 
-  /** Visits local times, ascending, none below 0. Values at a break are limits from the right. */
-  walk(times: Float64Array, visit: Visit): void {
+  /**
+   * Visits local times, ascending, none below 0. Values at a break are limits from the right.
+   * @param moving  false where the states are not looked at: then they stay
+   */
+  walk(times: Float64Array, moving: boolean, visit: Visit): void {
     const { drive } = this;
+    const last = drive.times.length - 1;
     let piece = -1;
     let clock = 0;
     const v = Float64Array.from(this.start);
     for (let i = 0; i < times.length; i++) {
       const u = times[i];
-      while (piece + 1 < drive.times.length && drive.times[piece + 1] <= u) piece++;
-      if (piece >= 0 && drive.times[piece] > clock) {
-        v.set(this.atBreak(piece));
-        clock = drive.times[piece];
+      while (piece < last && drive.times[piece + 1] <= u) piece++;
+      if (moving) {
+        if (piece >= 0 && drive.times[piece] > clock) {
+          v.set(this.atBreak(piece));
+          clock = drive.times[piece];
+        }
+        clock += this.advance(v, clock, u - clock, piece);
       }
-      clock += this.advance(v, clock, u - clock, piece);
       const rate = piece < 0 ? 0 : drive.level[piece] + drive.slope[piece] * (u - drive.times[piece]);
       visit(i, v, rate, piece < 0 ? 0 : drive.slope[piece]);
     }

@@ -1,6 +1,5 @@
-import { Part, type Plant } from "../compile/plant.js";
+import type { Plant } from "../compile/plant.js";
 import type { PlantSlope } from "../compile/plant-slopes.js";
-import { type Adjacency, stronglyConnected } from "../numerics/graph.js";
 import { factor, solve } from "../numerics/lu.js";
 import type { Blend } from "./joints.js";
 
@@ -9,19 +8,11 @@ export function jointBlendSlopes(
   plant: Plant,
   { flow: dFlow, inflow: dInflow }: PlantSlope,
   blends: readonly (Blend | undefined)[],
-  into: Adjacency,
 ): (Blend | undefined)[] {
-  const { nodes, from, to, flow } = plant;
-  const isJoint = (i: number): boolean => nodes[i].part === Part.Joint;
-  const inner = [...from.keys()].filter((k) => isJoint(from[k]) && isJoint(to[k]));
-  const groups = stronglyConnected({
-    size: nodes.length,
-    from: inner.map((k) => from[k]),
-    to: inner.map((k) => to[k]),
-  });
+  const { nodes, from, flow } = plant;
+  const { joints, into } = plant.structure;
   const slopes: (Blend | undefined)[] = new Array(nodes.length).fill(undefined);
-  for (const group of groups) {
-    if (!isJoint(group[0])) continue;
+  for (const group of joints) {
     const size = group.length;
     const local = new Map([...group].map((node, i) => [node, i]));
     const matrix = new Float64Array(size * size);

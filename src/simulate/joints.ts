@@ -1,5 +1,4 @@
-import { Part, type Plant } from "../compile/plant.js";
-import { adjacency, stronglyConnected } from "../numerics/graph.js";
+import type { Plant } from "../compile/plant.js";
 import { factor, solve } from "../numerics/lu.js";
 
 /** What a joint's outflow is made of: node -> weight. Sources are cells, tubes' outlets and, at weight 1/flow, tracer put in. */
@@ -11,15 +10,11 @@ export type Blend = ReadonlyMap<number, number>;
  * @returns per node: its blend (joints only), weights by source node; a joint with its own tracer input has itself as source
  */
 export function jointBlends(plant: Plant): (Blend | undefined)[] {
-  const { nodes, from, to, flow } = plant;
+  const { nodes, from, flow } = plant;
   const n = nodes.length;
-  const isJoint = (i: number) => nodes[i].part === Part.Joint;
-  const inner = [...from.keys()].filter((k) => isJoint(from[k]) && isJoint(to[k]));
-  const groups = stronglyConnected({ size: n, from: inner.map((k) => from[k]), to: inner.map((k) => to[k]) });
-  const into = adjacency(n, to);
+  const { joints, into } = plant.structure;
   const blends: (Blend | undefined)[] = new Array(n).fill(undefined);
-  for (const group of groups) {
-    if (!isJoint(group[0])) continue;
+  for (const group of joints) {
     const local = new Map([...group].map((node, i) => [node, i]));
     const size = group.length;
     const matrix = new Float64Array(size * size);

@@ -33,7 +33,8 @@ function addDensely(system: MovedSystem, drive: Drive, times: readonly Float64Ar
       const [first, local] = localTimes(times[r], passage.delay);
       const looks = into.slopes.map((_, p) => lookOf(system, passage, p));
       const value = into.value[r];
-      steps.walk(local, (i, v, rate, slope) => {
+      const moving = states.length > 0 || looks.some((look) => look.states.length > 0);
+      steps.walk(local, moving, (i, v, rate, slope) => {
         let sum = direct * rate;
         for (let j = 0; j < states.length; j++) sum += weights[j] * v[states[j]];
         value[first + i] += sum;

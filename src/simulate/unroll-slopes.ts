@@ -42,8 +42,8 @@ class Follower implements UnrolledSlope {
     private readonly plan: UnrollPlan,
     private readonly moved: PlantSlope,
   ) {
-    const { plant, blends, into, copies } = plan;
-    this.blends = jointBlendSlopes(plant, moved, blends, into);
+    const { plant, blends, copies } = plan;
+    this.blends = jointBlendSlopes(plant, moved, blends);
     let states = 0;
     for (const c of copies) for (const i of c.reached) if (plant.nodes[i].part === Part.Cell) states++;
     this.input = new Float64Array(states);
@@ -117,7 +117,8 @@ class Follower implements UnrolledSlope {
 
   /** Sum of flow times source into a node, and how it moves. */
   private entering(i: number, first: boolean, source: (i: number) => Draft, slope: (i: number) => Draft) {
-    const { plant, put, into } = this.plan;
+    const { plant, put } = this.plan;
+    const { into } = plant.structure;
     const sum: Draft = { weights: new Map(), direct: first ? (put.get(i) ?? 0) : 0 };
     const dSum: Draft = { weights: new Map(), direct: 0 };
     for (let e = into.start[i]; e < into.start[i + 1]; e++) {

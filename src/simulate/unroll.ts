@@ -2,7 +2,7 @@ import { requireCarried } from "../compile/carried.js";
 import { Part, type Plant } from "../compile/plant.js";
 import type { PlantSlope } from "../compile/plant-slopes.js";
 import { isClosed } from "../model/network.js";
-import { type Adjacency, adjacency } from "../numerics/graph.js";
+import type { Adjacency } from "../numerics/graph.js";
 import { factor, solve } from "../numerics/lu.js";
 import { sparseRows } from "../numerics/sparse.js";
 import { add, type Copy, type Draft, type UnrollPlan } from "./drafts.js";
@@ -79,16 +79,16 @@ class Unroller {
   ) {
     this.put = partsOf(entry);
     this.blends = jointBlends(plant);
-    this.out = adjacency(plant.nodes.length, plant.from);
-    this.into = adjacency(plant.nodes.length, plant.to);
+    this.out = plant.structure.out;
+    this.into = plant.structure.into;
     // In a closed vessel no pass carries less than the one before: only the horizon ends them.
-    this.loops = !isClosed(plant) && hasTubeInLoop(plant);
+    this.loops = !isClosed(plant) && plant.structure.tubeInLoop;
   }
 
   /** What was decided, for whoever follows the same way again. */
   get plan(): UnrollPlan {
-    const { plant, put, blends, into, copies } = this;
-    return { plant, put, blends, into, copies };
+    const { plant, put, blends, copies } = this;
+    return { plant, put, blends, copies };
   }
 
   build(horizon: number): boolean {
@@ -220,12 +220,4 @@ class Unroller {
     for (const [s, w] of inlet.weights) sum += w * this.dose[s];
     return sum * this.plant.nodes[tube].inflow;
   }
-}
-
-function hasTubeInLoop(plant: Plant): boolean {
-  return plant.groups.some(
-    (g) =>
-      g.some((i) => plant.nodes[i].part === Part.Delay) &&
-      (g.length > 1 || plant.from.some((f, k) => f === g[0] && plant.to[k] === g[0])),
-  );
 }

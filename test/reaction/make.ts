@@ -1,5 +1,6 @@
 import { columnsOf } from "../../src/compile/node-list.js";
 import { Part, type Plant } from "../../src/compile/plant.js";
+import { Structure } from "../../src/compile/structure.js";
 import type { Chemistry, Reaction } from "../../src/model/chemistry.js";
 import type { Duty } from "../../src/model/duty.js";
 import type { Network } from "../../src/model/network.js";
@@ -54,6 +55,7 @@ export function plantOf({ cells = {}, tubes = {}, links }: Sketch): Plant {
     env: new Float64Array(),
     nodes,
     columns: columnsOf(nodes),
+    structure: new Structure(columnsOf(nodes).part, from, to),
     from,
     to,
     flow,
