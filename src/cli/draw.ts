@@ -1,7 +1,7 @@
 import { flowSheet } from "../draw/flow-sheet.js";
 import { drawNetwork } from "../draw/network.js";
 import { parseNetwork } from "../parse/network.js";
-import { escapeText } from "../svg/svg.js";
+import { escapeText, type Svg } from "../svg/svg.js";
 import type { Context } from "./context.js";
 import { type Outcome, UsageError } from "./outcome.js";
 import { plantAt } from "./plant.js";
@@ -12,17 +12,21 @@ export interface DrawOptions {
   readonly set?: readonly string[];
 }
 
-/** `draw NETWORK`: the flow diagram as SVG, or in a page of its own. */
-export function draw(file: string, { output, set }: DrawOptions, { inputs, io }: Context): Outcome {
+/** `draw NETWORK`: the flow diagram as SVG or PNG, or in a page of its own. */
+export async function draw(file: string, { output, set }: DrawOptions, { inputs, io }: Context): Promise<Outcome> {
   const ending = output === undefined ? "svg" : (/\.(\w+)$/.exec(output)?.[1].toLowerCase() ?? "");
-  if (ending === "png") throw new UsageError("'.png' is not in this version of backmix; draw to .svg or .html");
-  if (ending !== "svg" && ending !== "html") throw new UsageError(`-o '${output}': draw to .svg or .html`);
+  if (!["svg", "png", "html"].includes(ending)) throw new UsageError(`-o '${output}': draw to .svg, .png or .html`);
   const network = inputs.document(file, parseNetwork);
-  const svg = drawNetwork(flowSheet(plantAt(network, settingsFrom(network, set))));
-  const content = ending === "html" ? page(network.title, svg) : `${svg}\n`;
-  if (output === undefined) return { status: 0, text: content, json: { ok: true, svg } };
-  io.write(output, content);
+  const sheet = flowSheet(plantAt(network, settingsFrom(network, set)));
+  const svg = drawNetwork(sheet, ending === "png" ? { theme: "light" } : {});
+  if (output === undefined) return { status: 0, text: `${svg}\n`, json: { ok: true, svg } };
+  io.write(output, await contentOf(ending, network.title, svg));
   return { status: 0, text: `${output}: ${network.title}`, json: { ok: true, written: output } };
+}
+
+async function contentOf(ending: string, title: string, svg: Svg): Promise<string | Uint8Array> {
+  if (ending === "png") return (await import("./png.js")).pngOf(svg);
+  return ending === "html" ? page(title, svg) : `${svg}\n`;
 }
 
 const page = (title: string, svg: string): string => `<!doctype html>

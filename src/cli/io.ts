@@ -42,7 +42,7 @@ export interface Io {
    */
   library?(path: string): string;
   /** Writes a file whole or not at all, into a folder that is there. Throws UsageError where it cannot. */
-  write(path: string, content: string): void;
+  write(path: string, content: string | Uint8Array): void;
   /** Makes a folder, and those above it, where they are not there. Throws UsageError where nothing can be written to it. */
   makeFolder(path: string): void;
   out(text: string): void;

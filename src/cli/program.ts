@@ -72,7 +72,7 @@ function addDraw(root: Command, { perform, inputs, io }: Stage): void {
   command(root, "draw <network>", "the flow diagram: bodies sized by volume, streams by flow", [
     "draw networks/demo/bypass.yaml -o bypass.svg",
   ])
-    .option("-o, --output <file>", "write to F.svg or F.html; else the SVG goes to standard output")
+    .option("-o, --output <file>", "write to F.svg, F.png or F.html; else the SVG goes to standard output")
     .option("--set <name=value>", "another value of a parameter, constant or feed.flow; repeatable", collect)
     .action((network: string, options) =>
       perform("draw", async () => (await import("./draw.js")).draw(network, options, { inputs, io })),

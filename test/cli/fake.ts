@@ -39,7 +39,7 @@ export async function backmix(
     read,
     obstacle: () => undefined,
     list: (path) => listed(path, files),
-    write: (path, content) => void written.set(path, content),
+    write: (path, content) => void written.set(path, typeof content === "string" ? content : latin1(content)),
     makeFolder: () => {},
     out: (text) => {
       out += text;
@@ -53,6 +53,9 @@ export async function backmix(
   });
   return { status, out, err, written };
 }
+
+/** One character per byte. */
+const latin1 = (bytes: Uint8Array): string => Buffer.from(bytes).toString("latin1");
 
 /** Files of the surroundings by their paths; else a folder of the repository. */
 function listed(path: string, files: NonNullable<Surroundings["files"]>): ReturnType<Io["list"]> {
