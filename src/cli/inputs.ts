@@ -76,6 +76,11 @@ export class Inputs {
     this.warnings.push(...problems);
   }
 
+  /** Every path that was asked for, also where nothing is. */
+  get paths(): readonly string[] {
+    return [...this.contents.keys()];
+  }
+
   /** Every file that was read, with its SHA-256, in the order read. */
   async list(): Promise<{ path: string; sha256: string }[]> {
     const { createHash } = await import("node:crypto");

@@ -6,11 +6,11 @@ import type { Stage } from "./stage.js";
 import { version } from "./version.js";
 
 /** Commands of the language's contract that this version does not have. */
-const laterCommands = "sweep, plan, watch, language-server".split(", ");
+const laterCommands = "sweep, plan, language-server".split(", ");
 
 /** The commands that this version has. */
 export const commandNames: ReadonlySet<string> = new Set([
-  ...["check", "draw", "simulate", "moments", "fit", "study"],
+  ...["check", "draw", "simulate", "moments", "fit", "study", "watch"],
   ...libraryCommandNames,
 ]);
 
@@ -36,6 +36,7 @@ export function program(stage: Stage): Command {
   addMoments(root, stage);
   addFit(root, stage);
   addStudy(root, stage);
+  addWatch(root, stage);
   addLibraryCommands(root, stage);
   addOutside(root, stage);
   for (const name of laterCommands) addLater(root, name);
@@ -143,6 +144,16 @@ function addStudy(root: Command, { perform, inputs, io }: Stage): void {
     .option("--starts <n>", "starts of each fit besides the file's own values", whole(0))
     .action((file: string, options) =>
       perform("study", async () => (await import("./study.js")).study(file, options, { inputs, io })),
+    );
+}
+
+function addWatch(root: Command, { perform, inputs, io }: Stage): void {
+  command(root, "watch <files...>", "a page on this machine that draws files anew on every save", [
+    "watch networks/demo/both.yaml networks/demo/study.yaml",
+  ])
+    .option("--port <n>", "where the page is, instead of any port that is free", whole(0), 0)
+    .action((files: string[], options) =>
+      perform("watch", async () => (await import("./watch.js")).watch(files, options, { inputs, io })),
     );
 }
 

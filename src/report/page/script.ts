@@ -14,10 +14,13 @@ const say = (v) => {
 };
 
 let hinted = false;
-for (const figure of document.querySelectorAll("figure")) {
+/** Gives the figures inside an element their buttons and readings; a live page asks for it again. */
+window.readFigures = (root) => root.querySelectorAll("figure").forEach(equip);
+
+function equip(figure) {
   const holder = figure.querySelector(".drawing");
   const source = figure.querySelector("script");
-  if (!holder) continue;
+  if (!holder || figure.querySelector(".tools")) return;
   const data = source ? JSON.parse(source.textContent) : undefined;
   const name = data ? data.name : figure.dataset.name || "figure";
   const tools = document.createElement("div");
@@ -177,5 +180,7 @@ function shape(kind, attributes) {
   for (const [key, value] of Object.entries(attributes)) made.setAttribute(key, value);
   return made;
 }
+
+window.readFigures(document);
 })();
 `.trim();
