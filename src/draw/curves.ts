@@ -6,7 +6,7 @@ import { caption, drawCaption } from "./caption.js";
 import { type EndLabel, endLabels, endRoom } from "./line-labels.js";
 import { type PictureOptions, picture } from "./picture.js";
 import { axisData, type Plotted } from "./plotted.js";
-import { area, points, trace } from "./traces.js";
+import { area, largest, points, trace } from "./traces.js";
 
 /** Lines over one pair of axes, such as E or F of several outlets, or rivals over the same points. */
 export interface Curves {
@@ -52,7 +52,7 @@ export function plotCurves(curves: Curves, options: CurvesOptions = {}): Plotted
     ...curves.lines.flatMap((l) => [...Array.from(l.y), ...(options.log ? [] : Array.from(l.band?.high ?? []))]),
     ...Array.from(curves.points?.y ?? []),
   ];
-  const ay = options.log ? logAxis(values, yRange) : linearAxis([...values, 0], yRange, 5);
+  const ay = options.log ? logAxis(values, yRange) : linearAxis([...aboveNoise(values), 0], yRange, 5);
   const left = leftRoom(ay);
   const plot: Box = { x: left, y: top, width: width - left - endRoom(curves.lines.map((l) => l.label)), height };
   const times = [
@@ -96,6 +96,12 @@ export function plotCurves(curves: Curves, options: CurvesOptions = {}): Plotted
     drawing: picture(curves.title, inWords(curves), view, options.theme ?? "auto", parts),
     data: { plots: [{ label: "", box: plot, ...axes, series }] },
   };
+}
+
+/** Without what lies a little below zero: noise about nothing should not double the axis. */
+function aboveNoise(values: readonly number[]): readonly number[] {
+  const least = -0.06 * largest(values, 0);
+  return values.filter((v) => v >= 0 || v < least);
 }
 
 const styleOf = (l: CurveLine, k: number): string =>

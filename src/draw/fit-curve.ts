@@ -17,6 +17,8 @@ export interface FitCurve {
   readonly timeUnit: string;
   /** What is measured and its unit: "tracer, g/L". */
   readonly value: string;
+  /** What the line is, where it is not fitted. */
+  readonly lineName?: string;
   readonly readings: readonly FitReading[];
 }
 
@@ -77,6 +79,7 @@ function drawPanel(
   width: number,
   log: boolean,
 ): { svg: Svg; bottom: number; data: PlotData } {
+  const lineName = curve.lineName ?? "fitted";
   const values = [...Array.from(r.measured), ...Array.from(r.fitted)];
   const yRange = [top + 42 + plotHeight, top + 42] as const;
   const ay = log ? logAxis(values, yRange) : linearAxis([...values, 0, 1.06 * largest(values, 0)], yRange, 5, false);
@@ -95,13 +98,13 @@ function drawPanel(
   const name = (words: Words, of: ArrayLike<number>): Svg | undefined =>
     placeAt(words, besideLine(r.time, of, ax, ay), clutter, plot);
   const names = [
-    name({ words: "fitted", style: "name" }, r.fitted),
+    name({ words: lineName, style: "name" }, r.fitted),
     name({ words: `measured, ${r.time.length} points`, style: "quiet" }, r.measured),
   ];
   const says = [
     r.source ? `${r.label}, from ${r.source}` : r.label,
     // where the plot has no room for names, they stand above it
-    ...(names.includes(undefined) ? ["circles measured, line fitted"] : []),
+    ...(names.includes(undefined) ? [`circles measured, line ${lineName}`] : []),
     ...(log && measured.hidden > 0 ? [`${measured.hidden} points at or below the axis not shown`] : []),
   ].join("; ");
   const svg = [
@@ -127,7 +130,7 @@ function drawPanel(
     y: axisData(ay, curve.value, log),
     series: [
       { label: "measured", x: r.time, y: r.measured },
-      { label: "fitted", x: r.time, y: r.fitted },
+      { label: lineName, x: r.time, y: r.fitted },
       { label: "residual", x: r.time, y: r.residual, hidden: true },
     ],
   };
@@ -216,7 +219,7 @@ function timeMarks(r: FitReading, ax: Axis, plot: Box): Svg {
 function inWords(curve: FitCurve): string {
   const parts = curve.readings.map((r) => {
     const marks = (r.marks ?? []).map((m) => `${m.name} ${formatNumber(m.time, 3)} ${curve.timeUnit}`).join(", ");
-    return `${r.label}: ${r.time.length} measured points and the fitted line${marks ? `; ${marks}` : ""}`;
+    return `${r.label}: ${r.time.length} measured points and the ${curve.lineName ?? "fitted"} line${marks ? `; ${marks}` : ""}`;
   });
   return `${curve.value} against time in ${curve.timeUnit}, residuals below. ${parts.join(". ")}.`;
 }

@@ -156,7 +156,8 @@ function resultOf(setup: Setup, settled: Settled, found: SearchResult): Fit {
 /** Where a fit was cut short there is a best so far, and no telling how good it is. */
 const unsure = (p: FittedParameter): FittedParameter => ({ ...p, standardError: undefined, interval95: undefined });
 
-function readingsOf(setup: Setup, { at, problem }: Settled): FittedReading[] {
+/** Every reading beside the curve at one point of a problem. */
+export function readingsOf(setup: Setup, { at, problem }: Pick<Settled, "at" | "problem">): FittedReading[] {
   return setup.blocks.map((block, b) => {
     const fitted = fittedCurve(block.time, block.origin, at, b);
     return {

@@ -8,7 +8,7 @@ import { describeInBrowser } from "./browser.js";
 import { faintWords } from "./contrast.js";
 
 const demo = "networks/demo";
-const names = "both.yaml salt-normal.yaml salt-normal.csv study.yaml tank.yaml".split(" ");
+const names = "both.yaml salt-normal.yaml salt-normal.csv".split(" ");
 
 describeInBrowser("the watch page in a browser", ({ visit }) => {
   const folder = mkdtempSync(join(tmpdir(), "backmix-watch-"));
@@ -16,7 +16,7 @@ describeInBrowser("the watch page in a browser", ({ visit }) => {
   let watching: Watching;
 
   beforeAll(async () => {
-    for (const name of names.slice(0, 3)) copyFileSync(join(demo, name), join(folder, name));
+    for (const name of names) copyFileSync(join(demo, name), join(folder, name));
     writeFileSync(join(folder, "corner.yaml"), sound);
     copyFileSync("shared/chemistry/consecutive.yaml", join(folder, "consecutive.yaml"));
     const options = { cwd: folder, port: 0, allowOutside: false, clock: () => new Date(2026, 0, 1, 12, 0, 0) };
@@ -57,6 +57,7 @@ describeInBrowser("the watch page in a browser", ({ visit }) => {
     expect(problem).toContain(`corner.yaml:${line}:`);
     expect(problem).toContain("drane");
     expect(problem).toContain("fix:");
+    expect(await faintWords(page)).toEqual([]);
     expect(await state.textContent()).toContain("The pictures are those of 12:00:00");
     expect(await drawing.innerHTML()).toBe(before);
 

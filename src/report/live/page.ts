@@ -61,7 +61,7 @@ const liveStyle = `
 .state{color:var(--bm-quiet)}
 .state.broken{color:var(--bm-accent);font-weight:700}
 .problems{font:13px/1.45 ui-monospace,Menlo,Consolas,monospace;overflow-x:auto;padding:.7rem 1rem;border-left:4px solid var(--bm-accent)}
-.pictures.old svg{opacity:.55}
+.pictures.old{border-left:4px solid var(--bm-faint);padding-left:.8rem;filter:grayscale(1)}
 `;
 
 const liveScript = `

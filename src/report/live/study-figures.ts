@@ -1,10 +1,10 @@
 import { compile } from "../../compile/compile.js";
 import { plotCurves } from "../../draw/curves.js";
+import { asItStands } from "../../fit/as-it-stands.js";
 import type { Study } from "../../model/study.js";
 import { inUnit } from "../../units/unit.js";
 import type { Figure } from "../input.js";
 import { diagram } from "./network-figures.js";
-import { asItStands } from "./trial-figures.js";
 
 /** Every rival over every trial at the values of their files, then the rivals' diagrams. Nothing is fitted. */
 export function studyFigures(study: Study): Figure[] {
@@ -12,7 +12,7 @@ export function studyFigures(study: Study): Figure[] {
     const time = study.rivals[0]?.network.units.time;
     const start = trial.injections[0]?.start ?? 0;
     const runs = study.rivals.flatMap(({ network, path }) => {
-      const first = asItStands(network, trial)?.readings[0];
+      const first = asItStands(network, trial)?.[0];
       return first ? [{ label: fileName(path), first }] : [];
     });
     if (!time || runs.length === 0) return [];

@@ -1,7 +1,7 @@
 import { plotCurves } from "../../draw/curves.js";
 import { plotFit } from "../../draw/fit-curve.js";
-import { fit } from "../../fit/fit.js";
-import type { Fit } from "../../fit/result.js";
+import { asItStands } from "../../fit/as-it-stands.js";
+import type { FittedReading } from "../../fit/result.js";
 import type { Network } from "../../model/network.js";
 import type { Trial } from "../../model/trial.js";
 import { differenceInUnit, inUnit } from "../../units/unit.js";
@@ -37,20 +37,16 @@ export function trialFigures(trial: Trial, vessel: Network | undefined): Figure[
   return at ? [...raw, ...compared(trial, vessel, at)] : raw;
 }
 
-/** The curve at the file's own values; scale and baseline, where the trial leaves them open, as they fit best. */
-export function asItStands(network: Network, trial: Trial): Fit | undefined {
-  return fit(network, [trial], { free: [], starts: 0, seed: 1, asItStands: true }).fit;
-}
-
-function compared(trial: Trial, { units: { time } }: Network, at: Fit): Figure[] {
+function compared(trial: Trial, { units: { time } }: Network, readings: readonly FittedReading[]): Figure[] {
   const start = trial.injections[0]?.start ?? 0;
-  return at.readings.map((r, k) => ({
+  return readings.map((r, k) => ({
     name: `vessel-${k + 1}`,
     ...plotFit(
       {
         title: `${trial.title}: ${r.at}`,
         timeUnit: time.name,
         value: `tracer, ${r.unit.name}`,
+        lineName: "vessel",
         readings: [
           {
             label: r.at,
