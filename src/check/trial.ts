@@ -40,8 +40,15 @@ function checkPlaces(network: Network, trial: Trial, report: Report): void {
     if (closed && !dosed) report("closed-inlet", where, { at });
   }
   for (const { of, at } of trial.contents?.levels ?? []) checkHolds(network, of, at, look, report);
-  for (const { at, where } of trial.readings) {
-    look(at, where, "outlet, compartment or feed", [...outlets, ...left, ...feeds]);
+  for (const { name, where } of trial.readings.flatMap((r) => r.places)) {
+    look(name, where, "outlet, compartment or feed", [...outlets, ...left, ...feeds]);
+  }
+  for (const { body, at, factor } of trial.tracer?.retained ?? []) {
+    look(body, at, "compartment", left);
+    if (typeof factor === "number") continue;
+    const known = network.names.filter((n) => isRatio(n.value.dimension)).map((n) => n.name);
+    if (!known.includes(factor.name))
+      report("retained-unknown", factor.at, { name: factor.name, nearest: nearest(factor.name, known), known });
   }
   for (const [name, value] of trial.flows) look(name, value.at, "feed", feeds);
   for (const [name, value] of trial.with) {

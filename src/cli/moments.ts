@@ -3,10 +3,11 @@ import { compile } from "../compile/compile.js";
 import { readMoments } from "../data/moments.js";
 import { settingsOfDay } from "../fit/settings.js";
 import type { Network } from "../model/network.js";
-import type { Trial } from "../model/trial.js";
+import type { Tracer, Trial } from "../model/trial.js";
 import { parseNetwork } from "../parse/network.js";
 import { parseTrial } from "../parse/trial.js";
 import { collector } from "../problems/report.js";
+import { tracerPlant } from "../simulate/tracer-plant.js";
 import { placesOf } from "../study/trial-facts.js";
 import type { Context } from "./context.js";
 import type { Inputs } from "./inputs.js";
@@ -30,7 +31,7 @@ export function moments(file: string, { vessel }: MomentsOptions, { inputs }: Co
     network
       ? {
           flowAt: (at) => knownOnDay(network, trial, (plant) => flowThrough(plant, at)),
-          volume: knownOnDay(network, trial, (plant) => plant.volume.total),
+          volume: knownOnDay(network, trial, (plant) => tracerPlant(plant, heldBack(trial)).volume.total),
           throughflow: knownOnDay(network, trial, (plant) => vesselOf(plant).feed),
           ...(plant ? placesOf(plant) : {}),
           ...(trial.clock ? { timeUnit: network.units.time } : {}),
@@ -43,6 +44,9 @@ export function moments(file: string, { vessel }: MomentsOptions, { inputs }: Co
     json: { ok: true, trial: trial.title, ...momentsResultJson(result) },
   };
 }
+
+/** What the tracer sees as volume: a loss makes it no larger. */
+const heldBack = ({ tracer }: Trial): Tracer | undefined => tracer?.retained && { retained: tracer.retained };
 
 function vesselFor(trial: Trial, named: string | undefined, inputs: Inputs): Network | undefined {
   const path = named ?? trial.vessel;

@@ -126,7 +126,7 @@ function placesOf(plant: Plant, trial: Trial) {
   const from = trial.injections[0]?.at;
   if (from === undefined || isClosed(plant)) return [];
   const all = moments(plant, plant.entry.get(from) as number);
-  return [...new Set(trial.readings.map((r) => r.at))].map((at) => {
+  return [...new Set(trial.readings.flatMap((r) => r.places.map((p) => p.name)))].map((at) => {
     const node = plant.exit.get(at) as number;
     const { inflow } = plant.nodes[node];
     const flow = plant.feeds.find((f) => f.name === from)?.flow ?? plant.feeds.reduce((s, f) => s + f.flow, 0);

@@ -3,22 +3,24 @@ import type { Trial } from "../model/trial.js";
 import { putsOf } from "../simulate/puts.js";
 import type { Balance } from "../simulate/respond.js";
 import { type AnyEngine, trace } from "../simulate/trace.js";
+import { tracerPlant } from "../simulate/tracer-plant.js";
 import { dimensionName, dimensions, times } from "../units/dimension.js";
 import type { Unit } from "../units/unit.js";
 
 /**
  * The tracer balance of a whole trial at a time on its clock: what the injections put in beyond what the vessel was in
  * balance with before, and what it held at the start.
- * @returns undefined where the amount has no unit that a balance could be printed in
+ * @returns undefined where the amount has no unit that a balance could be printed in, or where tracer decays or is lost
  */
 export function trialBalance(
-  plant: Plant,
+  liquid: Plant,
   trial: Trial,
   until: number,
   engine: AnyEngine,
 ): { balance: Balance; unit: Unit } | undefined {
+  const plant = tracerPlant(liquid, trial.tracer);
   const unit = amountUnit(plant, trial);
-  if (!unit) return undefined;
+  if (!unit || trial.tracer?.decay || trial.tracer?.loss) return undefined;
   const sum = { injected: 0, left: 0, inside: 0 };
   for (const { entry, start, drive, still } of putsOf(plant, trial)) {
     const span = until - start;

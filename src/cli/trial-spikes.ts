@@ -1,6 +1,7 @@
 import type { Plant } from "../compile/plant.js";
 import type { Reading, Trial } from "../model/trial.js";
 import { trace } from "../simulate/trace.js";
+import { tracerPlant } from "../simulate/tracer-plant.js";
 
 /** Undispersed tracer at a probe: when (s on the trial's clock) and how much (concentration times s). SI. */
 export interface TrialSpike {
@@ -15,19 +16,27 @@ const smallest = 1e-12;
  * What of the trial's instant pulses reaches a probe through tubes alone: no curve of concentrations can show it. A lag
  * of the detector spreads it, then there is none.
  */
-export function trialSpikes(plant: Plant, trial: Trial, reading: Reading, until: number): TrialSpike[] {
-  const node = plant.exit.get(reading.at);
-  if (node === undefined || (reading.line.lag?.of(plant.env) ?? 0) > 0) return [];
+export function trialSpikes(liquid: Plant, trial: Trial, reading: Reading, until: number): TrialSpike[] {
+  if ((reading.line.lag?.of(liquid.env) ?? 0) > 0) return [];
+  const plant = tracerPlant(liquid, trial.tracer);
   const line = reading.line.delay?.of(plant.env) ?? 0;
+  const decay = trial.tracer?.decay ?? 0;
   const spikes = trial.injections.flatMap(({ at, start, lasting, form }) => {
     const entry = plant.entry.get(at);
     if (form.is !== "pulse" || lasting > 0 || entry === undefined) return [];
     const amount = form.amount.of(plant.env);
-    const least = (smallest * amount) / plant.nodes[node].inflow;
-    return trace(plant, entry, until - start)
-      .passagesAt(node)
-      .map((p) => ({ time: start + p.delay + line, area: p.direct * amount }))
-      .filter((s) => s.area > least && s.time <= until);
+    return reading.places.flatMap(({ name, share }) => {
+      const node = plant.exit.get(name);
+      if (node === undefined) return [];
+      const least = (smallest * amount) / plant.nodes[node].inflow;
+      return trace(plant, entry, until - start)
+        .passagesAt(node)
+        .map((p) => ({
+          time: start + p.delay + line,
+          area: share * p.direct * amount * Math.exp(-decay * (p.delay + line)),
+        }))
+        .filter((s) => s.area > least && s.time <= until);
+    });
   });
   return spikes.sort((a, b) => a.time - b.time);
 }

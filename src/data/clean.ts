@@ -2,8 +2,10 @@ import type { Injection, Reading, Trial } from "../model/trial.js";
 import { type Dimension, dimensions, times } from "../units/dimension.js";
 import type { Unit } from "../units/unit.js";
 import { type Baseline, baselineAt, baselineOf } from "./baseline.js";
+import { type Censored, uncensor } from "./censored.js";
 import { type Measures, measure } from "./measure.js";
 import { type Noise, noiseOf } from "./noise.js";
+import { inflation } from "./persistence.js";
 
 /** What one step of cleaning did: the figures of the curve after it, trapezoid on its points, nothing extrapolated. SI. */
 export interface CleanStep extends Measures {
@@ -29,13 +31,17 @@ export interface CleanCurve {
   readonly before: number;
   readonly noise: Noise;
   readonly baseline: Baseline | undefined;
+  /** Change of each point for one standard deviation of each thing that calibration and limits leave open. SI. */
+  readonly doubts: readonly Float64Array[];
+  readonly censored: Censored | undefined;
   /** What the detector's lag and a long injection add to mean, variance and third central moment: to be subtracted. */
   readonly added: { readonly mean: number; readonly variance: number; readonly third: number };
   readonly steps: readonly CleanStep[];
 }
 
 /**
- * Cleans a reading as declared, in this order: raw, calibration, leave-out, time zero, line delay, baseline. The line's
+ * Cleans a reading as declared, in this order: raw, dead time, temperature, calibration, leave-out, limits, time zero,
+ * line delay, baseline, decay. The line's
  * lag and the length of a pulse do not change the curve: what they add to its moments is returned beside it (a
  * rectangular pulse of width w adds w^2/12 to the variance about its middle; a first-order lag its own moments).
  * @returns undefined for a reading without data
@@ -57,18 +63,33 @@ export function cleanReading(trial: Trial, reading: Reading): CleanCurve | undef
   };
   note("raw");
 
-  if (reading.calibration) {
-    const { blank, rise, per, perUnit } = reading.calibration;
-    y = y.map((raw) => ((raw - blank) / rise) * per);
-    unit = perUnit;
-    note("calibration");
+  for (const stage of reading.stages) {
+    y = stage.value;
+    unit = stage.unit;
+    note(stage.name);
   }
-  const kept = keptPoints(t, reading.leaveOut, isStep ? endOf(injection) : Number.POSITIVE_INFINITY);
-  if (kept.length < t.length) {
+  let doubts = reading.doubts;
+  let flags = reading.censored;
+  const keep = (kept: readonly number[]): void => {
     const [time, value] = [t, y];
     t = Float64Array.from(kept, (i) => time[i]);
     y = Float64Array.from(kept, (i) => value[i]);
+    doubts = doubts.map((d) => Float64Array.from(kept, (i) => d[i]));
+    flags = flags && Int8Array.from(kept, (i) => (flags as Int8Array)[i]);
+  };
+  const kept = keptPoints(t, reading.leaveOut, isStep ? endOf(injection) : Number.POSITIVE_INFINITY);
+  if (kept.length < t.length) {
+    keep(kept);
     note("leave-out");
+  }
+  let censored: Censored | undefined;
+  if (flags?.some((f) => f !== 0)) {
+    const { doubt, value, ...rest } = uncensor(y, flags, reading.limits, !isStep);
+    censored = rest.censored;
+    keep(rest.kept);
+    y = value;
+    doubts = [...doubts, doubt];
+    note("limits");
   }
   const delay = reading.line.delay?.of([]) ?? 0;
   const lag = reading.line.lag?.of([]) ?? 0;
@@ -84,14 +105,26 @@ export function cleanReading(trial: Trial, reading: Reading): CleanCurve | undef
   const start = -width / 2;
   const before = t.findIndex((s) => s >= start);
   const count = before < 0 ? t.length : before;
-  const noise = noiseOf(t, y, count, reading.noise);
-  const typical = noise.sd[0] ?? 0;
+  let noise = noiseOf(t, y, count, reading);
+  const typical = (noise.sd[0] ?? 0) * Math.sqrt(inflation(noise.persistence.lag1));
+  const { decay = 0, loss = 0 } = trial.tracer ?? {};
+  const lost = decay > 0 || (loss > 0 && !isStep);
   const baseline =
-    reading.baseline === "none" ? undefined : baselineOf(t, y, count, typical, reading.baseline, !isStep);
+    reading.baseline === "none" ? undefined : baselineOf(t, y, count, typical, reading.baseline, !isStep && !lost);
   if (baseline) {
     const under = baseline;
     y = y.map((c, i) => c - baselineAt(under, t[i]));
     note("baseline");
+  }
+  if (lost) {
+    // Decay goes on in the sample line, a loss inside the vessel does not.
+    const back = t.map((s) =>
+      Math.exp(decay * Math.max(0, s + width / 2 + delay) + (isStep ? 0 : loss) * Math.max(0, s + width / 2)),
+    );
+    y = y.map((c, i) => c * back[i]);
+    noise = { ...noise, sd: noise.sd.map((sd, i) => sd * back[i]) };
+    doubts = doubts.map((d) => d.map((x, i) => x * back[i]));
+    note(decay > 0 ? (loss > 0 && !isStep ? "decay and loss" : "decay") : "loss");
   }
   takeOff(steps, "injection width", 0, width ** 2 / 12);
   takeOff(steps, "detector lag", lag, lag ** 2);
@@ -105,6 +138,8 @@ export function cleanReading(trial: Trial, reading: Reading): CleanCurve | undef
     before: count,
     noise,
     baseline,
+    doubts,
+    censored,
     added: { mean: lag, variance: lag ** 2 + width ** 2 / 12, third: 2 * lag ** 3 },
     steps,
   };

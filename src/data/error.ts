@@ -1,4 +1,5 @@
 import type { CleanCurve } from "./clean.js";
+import { varianceOfSum } from "./persistence.js";
 import { figures, momentsOf, pulseResponse, type RawMoments, type Response, type TailDoubt } from "./response.js";
 import type { Rule } from "./weights.js";
 
@@ -17,7 +18,10 @@ export function momentErrors(
   const error = (name: keyof typeof figures): number => {
     const gradient = gradientOf(name, found);
     const doubt = found.doubt[name];
-    const points = pointsError(gradient, response);
+    const points = Math.hypot(
+      pointsError(gradient, response, curve),
+      doubtsError(gradient, response, curve, name === "area" ? 1 / (1 - found.tail.area) : 1),
+    );
     if (curve.baseline?.tail) return Math.hypot(points, jointError(gradient, doubt, response, curve), doubt.hidden);
     const figure = figures[name];
     const under = moved
@@ -43,11 +47,23 @@ function gradientOf(name: keyof typeof figures, { gradient, mean, variance, thir
   return gradient[name];
 }
 
-/** Scatter of the points, and what was not seen before the first of them. */
-function pointsError(gradient: Float64Array, { sd, weight, front }: Response): number {
-  let sum = front ? (front * (gradient[0] / weight[0])) ** 2 : 0;
-  for (let i = 0; i < gradient.length; i++) sum += (gradient[i] * sd[i]) ** 2;
-  return Math.sqrt(sum);
+/** Scatter of the points, as far as neighbours hang together, and what was not seen before the first of them. */
+function pointsError(gradient: Float64Array, { sd, weight, front, time }: Response, { noise }: CleanCurve): number {
+  const early = front ? front * (gradient[0] / weight[0]) : 0;
+  return Math.sqrt(early ** 2 + varianceOfSum(gradient, sd, time, noise.persistence));
+}
+
+/** What calibration and limits leave open; a step is read against its own levels, where a slope cancels. */
+function doubtsError(gradient: Float64Array, { is, value }: Response, curve: CleanCurve, scale: number): number {
+  if (is === "washout") return 0;
+  const seen = curve.value.length - curve.before;
+  const lead = value.length - seen;
+  const shifts = curve.doubts.map((d) => {
+    let sum = 0;
+    for (let i = 0; i < seen; i++) sum += gradient[i + lead] * d[i + curve.before];
+    return scale * sum;
+  });
+  return Math.hypot(0, ...shifts);
 }
 
 /** How a figure falls as the baseline rises, and as it turns about its middle. */

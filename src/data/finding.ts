@@ -126,6 +126,49 @@ const wording = {
     couldBe: "a bypass, or sampling that began late",
     next: "sample from the injection on",
   },
+  "limits-above": {
+    weight: "caution",
+    message: "readings at the upper limit of the detector count as the limit itself: area and peak are too low",
+    couldBe: "a detector in saturation",
+    next: "fit a network, which takes them as censored; use less tracer or a wider range",
+  },
+  "limits-below": {
+    weight: "note",
+    message:
+      "readings below the limit of detection: nothing is taken before the first above it, half the limit between, nothing after the last",
+    couldBe: "too small a dose for the detector",
+    next: "fit a network, which takes them as censored; use more tracer where the tail counts",
+  },
+  gap: {
+    weight: "caution",
+    message: "the log has a gap where tracer was passing: a straight line was drawn across it",
+    couldBe: "a logger that stopped, or rows with words for missing values",
+    next: "look for the missing rows; a fit needs no line across",
+  },
+  "noise-correlated": {
+    weight: "note",
+    message: "neighbouring errors hang together: standard errors are those of fewer points",
+    couldBe: "a logger that smooths, or a slow wander of the detector",
+    next: "log raw values; a blank run of the length of the test tells the wander",
+  },
+  "decay-corrected": {
+    weight: "note",
+    message: "readings were brought back to the activity at the start of the injection by the declared half-life",
+    couldBe: "another nuclide beside it would show as a wrong late tail",
+    next: "check the half-life and the clock of the dose",
+  },
+  "loss-corrected": {
+    weight: "note",
+    message: "the declared loss was taken out of the curve: recovery is that of a tracer that is not lost",
+    couldBe: "a loss that is not the same everywhere in the vessel",
+    next: "compare with a tracer that is not lost",
+  },
+  "loss-left": {
+    weight: "caution",
+    message: "the declared loss is still in the curve: without a model it cannot be taken out of a step",
+    couldBe: "a level and a mean that are too low",
+    next: "fit a network, which has the loss in it",
+  },
   "mean-early": {
     weight: "note",
     message:

@@ -10,9 +10,10 @@ import { type Finding, finding } from "./finding.js";
 import { closedPeclet, holdback, segregation } from "./indices.js";
 import { inletMoments } from "./inlet.js";
 import { gradeOf, hopeless, judgeBaseline, judgeEnds, judgeMean, judgeRecovery } from "./judge.js";
+import { judgeLog } from "./judge-log.js";
 import { onlyFlow, recoveryOf, tauOf, whyNoRecovery } from "./recovery.js";
 import { momentsOf } from "./response.js";
-import { type MomentsOptions, type MomentsResult, nothing, type ReadingMoments } from "./result.js";
+import { type MomentsOptions, type MomentsResult, noiseFigure, nothing, type ReadingMoments } from "./result.js";
 import { seenResponse } from "./seen.js";
 
 export type { MomentsOptions, MomentsResult, ReadingMoments } from "./result.js";
@@ -65,7 +66,8 @@ export function readCurve(
   notSupported: string[],
 ): ReadingMoments {
   const injection = trial.injections[0];
-  const flow = options.flowAt?.(reading.at) ?? onlyFlow(trial);
+  const mixed = reading.places.length > 1;
+  const flow = mixed ? undefined : (options.flowAt?.(reading.at) ?? onlyFlow(trial));
   const whole = options.throughflow ?? flow;
   const rule = options.rule ?? "trapezoid";
   const stop =
@@ -80,6 +82,7 @@ export function readCurve(
   }
   const { response, recovered } = seen;
   findings.push(...judgeEnds(curve, response, found, reading.baseline !== "none"));
+  findings.push(...judgeLog(trial, reading, curve, response, found));
 
   const time = options.timeUnit ?? curve.timeUnit;
   const time2 = productUnit(`${time.name}^2`, time, time);
@@ -97,7 +100,7 @@ export function readCurve(
   const meanFigure = figure(known ? mean : undefined, time, errors.mean);
   const varianceFigure = figure(known && variance > 0 ? variance : undefined, time2, errors.variance);
   findings.push(...judgeBaseline(curve, found, errors.mean));
-  const way = options.wayOut?.(reading.at);
+  const way = mixed ? { isOutlet: false, share: 0, others: [] } : options.wayOut?.(reading.at);
   const alone = !way || (way.isOutlet && way.others.length === 0);
   const unseen = way?.others.filter((name) => !trial.readings.some((r) => r.at === name)) ?? [];
   const expected = alone || injection.form.is === "step" || !way?.isOutlet ? undefined : way.share;
@@ -114,7 +117,7 @@ export function readCurve(
   const tau = alone ? tauOf(options, flow) : undefined;
   if (!alone)
     notSupported.push(
-      `effective volume, holdback, segregation and dead volume at '${curve.at}': ${way.isOutlet ? `liquid leaves by ${way.others.join(", ")}, too` : "it is not the outlet of the vessel"}`,
+      `effective volume, holdback, segregation and dead volume at '${curve.at}': ${way.isOutlet ? `liquid leaves by ${way.others.join(", ")}, too` : mixed ? "it is a mix of several places" : "it is not the outlet of the vessel"}`,
     );
   else if (!tau)
     notSupported.push(`holdback, segregation and dead volume at '${curve.at}': the volume or the flow is not known`);
@@ -184,7 +187,7 @@ export function readCurve(
     indices,
     tail: response.tail,
     tailShare: found.tail,
-    noise: { sd: figure(curve.noise.sd[0], curve.unit), from: curve.noise.from },
+    noise: noiseFigure(curve),
     steps,
     curve: { time: F.time, E: F.E, F: F.F },
   };

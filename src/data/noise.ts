@@ -1,9 +1,12 @@
 import type { Reading } from "../model/trial.js";
+import { countingVariance } from "./counting.js";
+import { type Persistence, persistenceOf } from "./persistence.js";
 
 /** One standard deviation of each point, and where it is known from. */
 export interface Noise {
   readonly sd: Float64Array;
   readonly from: "declared" | "before the injection" | "roughness of the curve";
+  readonly persistence: Persistence;
 }
 
 /**
@@ -11,15 +14,25 @@ export interface Noise {
  * curve or of its last third, which are upper bounds where samples are sparse.
  * @param n how many of the points lie before the injection
  */
-export function noiseOf(t: Float64Array, y: Float64Array, n: number, declared: Reading["noise"]): Noise {
+export function noiseOf(
+  t: Float64Array,
+  y: Float64Array,
+  n: number,
+  reading: Pick<Reading, "noise" | "calibration">,
+): Noise {
+  const persistence = persistenceOf(t, y, n);
+  const declared = reading.noise;
   if (declared) {
     const floor = declared.floor?.of([]) ?? 0;
     const relative = declared.relative ?? 0;
-    return { sd: y.map((c) => Math.hypot(floor, relative * c)), from: "declared" };
+    const counts = countingVariance(reading);
+    const sd = y.map((c) => Math.sqrt(floor ** 2 + (relative * c) ** 2 + (counts?.(c) ?? 0)));
+    return { sd, from: "declared", persistence };
   }
-  const before = n >= 8 ? roughness(t.subarray(0, n), y.subarray(0, n)) : 0;
+  const before = n >= 8 ? (persistence.from?.sd ?? roughness(t.subarray(0, n), y.subarray(0, n))) : 0;
   const sd = n >= 8 ? before : leastRoughness(t, y);
-  return { sd: new Float64Array(y.length).fill(sd), from: n >= 8 ? "before the injection" : "roughness of the curve" };
+  const from = n >= 8 ? "before the injection" : "roughness of the curve";
+  return { sd: new Float64Array(y.length).fill(sd), from, persistence };
 }
 
 function leastRoughness(t: Float64Array, y: Float64Array): number {

@@ -3,6 +3,7 @@ import { one } from "../units/unit.js";
 import { type CleanCurve, type CleanStep, productUnit } from "./clean.js";
 import { type Figure, figure, type Known } from "./figure.js";
 import type { Finding } from "./finding.js";
+import { inflation } from "./persistence.js";
 import type { Tail } from "./tail.js";
 import type { Rule } from "./weights.js";
 
@@ -58,7 +59,13 @@ export interface ReadingMoments {
   readonly tail: Tail;
   /** What the extrapolated tail makes of each figure: fractions. */
   readonly tailShare: { readonly area: number; readonly mean: number; readonly variance: number };
-  readonly noise: { readonly sd: Figure; readonly from: string };
+  readonly noise: {
+    readonly sd: Figure;
+    readonly from: string;
+    /** Correlation of neighbouring errors, and how many independent points all of them are worth; where it is told. */
+    readonly lag1?: number;
+    readonly effective?: number;
+  };
   readonly steps: readonly CleanStep[];
   readonly curve: { readonly time: Float64Array; readonly E: Float64Array; readonly F: Float64Array } | undefined;
 }
@@ -69,6 +76,16 @@ export interface MomentsResult {
   readonly findings: readonly Finding[];
   /** What was looked for, or asked, and the data or documents do not give; in words. */
   readonly notSupported: readonly string[];
+}
+
+/** The scatter of a reading, and how its errors hang together. */
+export function noiseFigure({ noise, unit, time }: CleanCurve): ReadingMoments["noise"] {
+  const { lag1, from } = noise.persistence;
+  return {
+    sd: figure(noise.sd[0], unit),
+    from: noise.from,
+    ...(from ? { lag1, effective: time.length / inflation(lag1) } : {}),
+  };
 }
 
 /** A reading of which nothing can be said but why. */
@@ -91,7 +108,7 @@ export function nothing(curve: CleanCurve, time: Unit): ReadingMoments {
     indices: {},
     tail: { is: "open", level: Number.NaN },
     tailShare: { area: 0, mean: 0, variance: 0 },
-    noise: { sd: figure(curve.noise.sd[0], curve.unit), from: curve.noise.from },
+    noise: noiseFigure(curve),
     steps: curve.steps,
     curve: undefined,
   };

@@ -43,6 +43,8 @@ export function estimatesOf({ problem, x, at }: Settled): Estimates {
     return shift ? [whole.respond(shift)] : [];
   });
 
+  for (const shift of calibrationShifts(problem)) constants.push(whole.respond(shift));
+
   const plainAt = (i: number, j: number): number => variance * plain.inverse[i * plain.n + j];
   // In coordinates: the data's part grows with autocorrelation, then come held facts, then constants.
   const wideAt = (i: number, j: number): number => {
@@ -123,6 +125,17 @@ function nuisanceOf(
     };
   }
   return { nuisance, names };
+}
+
+/** Weighted change of the measurements for one standard deviation of each thing that a calibration leaves open, with rows for priors. */
+function calibrationShifts({ setup, weight, priors }: Settled["problem"]): Float64Array[] {
+  return setup.blocks.flatMap((b) =>
+    b.doubts.map((doubt) => {
+      const shift = new Float64Array(setup.observations + priors.length);
+      for (let i = 0; i < doubt.length; i++) shift[b.from + i] = doubt[i] * weight[b.from + i];
+      return shift;
+    }),
+  );
 }
 
 /** Length of the weighted measurements. */

@@ -1,4 +1,4 @@
-import type { Reading, Trial } from "../model/trial.js";
+import { concentrationsOf, type Reading, type Trial } from "../model/trial.js";
 import type { Unit } from "../units/unit.js";
 
 /** The points of one reading that a fit looks at: calibrated, without what is left out. */
@@ -14,6 +14,8 @@ export interface Block {
   /** s on the trial's clock, and concentration in SI. */
   readonly time: Float64Array;
   readonly measured: Float64Array;
+  /** Change of `measured` for one standard deviation of each thing that a calibration leaves open. */
+  readonly doubts: readonly Float64Array[];
   /** Readings of one dimension share a group, and with it one unknown variance. */
   readonly group: number;
   /** Unit of the group (that of its first reading): residuals are counted in it. */
@@ -62,14 +64,16 @@ export function blocksOf(trials: readonly Trial[]): Block[] {
 }
 
 /** Points of a reading after calibration and `leave-out` (both ends included), finite ones only, in order of time. */
-function keptPoints(reading: Reading): { time: Float64Array; measured: Float64Array } {
-  const { series, calibration: c, leaveOut } = reading;
-  if (!series) return { time: new Float64Array(0), measured: new Float64Array(0) };
-  const value = (i: number): number => (c ? ((series.value[i] - c.blank) / c.rise) * c.per : series.value[i]);
+function keptPoints(reading: Reading): Pick<Block, "time" | "measured" | "doubts"> {
+  const { series, leaveOut } = reading;
+  const concentration = concentrationsOf(reading);
+  if (!series || !concentration) return { time: new Float64Array(0), measured: new Float64Array(0), doubts: [] };
+  const value = (i: number): number => concentration[i];
   const leftOut = (t: number): boolean => leaveOut.some((s) => t >= s.from && t <= s.to);
   const kept = Array.from(series.time.keys()).filter((i) => Number.isFinite(value(i)) && !leftOut(series.time[i]));
   kept.sort((i, j) => series.time[i] - series.time[j]);
-  return { time: Float64Array.from(kept, (i) => series.time[i]), measured: Float64Array.from(kept, value) };
+  const pick = (from: Float64Array): Float64Array => Float64Array.from(kept, (i) => from[i]);
+  return { time: pick(series.time), measured: pick(concentration), doubts: reading.doubts.map(pick) };
 }
 
 /** Number of points of all blocks. */

@@ -1,3 +1,4 @@
+import { countingVariance } from "../data/counting.js";
 import type { Reading } from "../model/trial.js";
 import type { Env } from "../model/value.js";
 import type { Evaluation } from "./problem.js";
@@ -33,12 +34,13 @@ export function weightsFor(setup: Setup, fitted?: Evaluation & { readonly before
     const noise = b.declared.noise;
     const floor = floorOf(b.declared, setup.env);
     const relative = noise?.relative ?? 0;
-    moving ||= relative > 0 || (!noise && spread !== undefined);
+    const counts = countingVariance(b.declared);
+    moving ||= relative > 0 || counts !== undefined || (!noise && spread !== undefined);
     const curve = fitted ? fittedCurve(b.time, b.origin, fitted, k) : b.measured;
     const least = 1e-3 * relative * peakOf(curve);
     for (let i = 0; i < b.time.length; i++) {
       const sigma = noise
-        ? Math.max(Math.hypot(floor, relative * curve[i]), least)
+        ? Math.max(Math.sqrt(floor ** 2 + (relative * curve[i]) ** 2 + (counts?.(curve[i]) ?? 0)), least)
         : spread
           ? spread[b.group]
           : b.unit.factor;
@@ -70,13 +72,8 @@ function groupSpreads(
   return sum.map((s, g) => Math.sqrt(s / Math.max(1, count[g])) || 1);
 }
 
-/** The declared floor, SI of the concentration; one given in the detector's unit goes through the calibration. */
-function floorOf({ noise, calibration, unit }: Reading, env: Env): number {
-  if (!noise?.floor) return 0;
-  const floor = noise.floor.of(env);
-  const sameUnit = noise.floor.dimension.join() === unit.dimension.join();
-  return calibration && !sameUnit ? Math.abs((floor / calibration.rise) * calibration.per) : floor;
-}
+/** The declared floor, SI of the concentration. */
+const floorOf = ({ noise }: Reading, env: Env): number => noise?.floor?.of(env) ?? 0;
 
 /** Model with its linear terms, SI. */
 export function fittedCurve(time: Float64Array, origin: number, at: Evaluation, block: number): Float64Array {

@@ -22,6 +22,7 @@ export interface Trial {
   /** Tracer that the vessel holds at the start. */
   readonly contents?: Contents | undefined;
   readonly readings: readonly Reading[];
+  readonly tracer?: Tracer | undefined;
   /** How the trial's clock is written, for printing its times; undefined where times are elapsed. */
   readonly clock?: ClockFormat | undefined;
 }
@@ -44,21 +45,59 @@ export interface Injection {
     | { readonly is: "pulse"; readonly amount: Value }
     | { readonly is: "step"; readonly level: Value; readonly from: Value | undefined }
     /** A measured inlet as concentration (SI) on the trial's clock: calibrated, left-out points gone, line delay taken off. */
-    | { readonly is: "signal"; readonly table: Series };
+    | {
+        readonly is: "signal";
+        readonly table: Series;
+        /** Time constant of the first-order detector that saw it, s; still in the table. */
+        readonly lag?: number;
+      };
+}
+
+/** What the tracer does that the liquid does not. */
+export interface Tracer {
+  /** Radioactive decay, 1/s: amounts are those at the start of their injection. */
+  readonly decay?: number;
+  /** Loss of first order in the vessel, 1/s. */
+  readonly loss?: number;
+  readonly retained?: readonly Retained[];
+}
+
+/** A body that holds the tracer back: it sees `factor` times the volume. A name is one of the network's. */
+export interface Retained {
+  readonly body: string;
+  readonly at: Span;
+  readonly factor: number | { readonly name: string; readonly at: Span };
 }
 
 /** A probe or a set of samples: where, which file, and every cleaning step, declared. */
 export interface Reading {
+  /** The place, for people: of a mix, its places with their shares. */
   readonly at: string;
   readonly where: Span;
+  /** The places that it draws from; shares add to 1. */
+  readonly places: readonly Place[];
   /** Raw points as read from the file, cleaned of nothing: seconds on the trial's clock, value in the detector's unit (SI). */
   readonly series: Series | undefined;
+  /** What the detector's own corrections make of those values, one after another; the last is a concentration. */
+  readonly stages: readonly Stage[];
+  /** Change of every point's concentration for one standard deviation of each thing that a calibration leaves open. SI. */
+  readonly doubts: readonly Float64Array[];
+  /** Per point: -1 at or below the lower limit, 1 at or above the upper one, 0 between. Undefined where there are no limits. */
+  readonly censored: Int8Array | undefined;
+  /** Concentrations, SI, beyond which a reading is not believed. */
+  readonly limits: { readonly below: number | undefined; readonly above: number | undefined };
   readonly calibration: Calibration | undefined;
   readonly baseline: "none" | "constant" | "drift";
   readonly scale: "known" | "free";
   /** Sample line and detector: pure delay and first-order lag, s. */
   readonly line: { readonly delay: Value | undefined; readonly lag: Value | undefined };
-  readonly noise: { readonly floor: Value | undefined; readonly relative: number | undefined } | undefined;
+  readonly noise:
+    | {
+        readonly floor: Value | undefined;
+        readonly relative: number | undefined;
+        readonly counting?: Counting | undefined;
+      }
+    | undefined;
   readonly leaveOut: readonly {
     readonly from: number;
     readonly to: number;
@@ -69,10 +108,44 @@ export interface Reading {
   readonly unit: Unit;
 }
 
-/** Concentration = (raw - blank) / rise * per. SI. */
-export interface Calibration {
-  readonly blank: number;
-  readonly rise: number;
-  readonly per: number;
-  readonly perUnit: Unit;
+/** A place that a reading draws from. */
+export interface Place {
+  readonly name: string;
+  readonly where: Span;
+  readonly share: number;
 }
+
+/** The values of a series after one correction, SI. */
+export interface Stage {
+  readonly name: "dead time" | "temperature" | "calibration";
+  readonly unit: Unit;
+  readonly value: Float64Array;
+}
+
+/** Counts: how long each reading counted, and for how long a count makes the detector blind, s. */
+export interface Counting {
+  readonly over: number;
+  readonly deadTime: number;
+}
+
+/** From what the detector reads to a concentration and back. SI. */
+export interface Calibration {
+  readonly perUnit: Unit;
+  /** The unit of the detector. */
+  readonly rawUnit: Unit;
+  /** Raw values of the first and last standard, SI; undefined where there are none. */
+  readonly range?: readonly [number, number];
+  /** In words, where it was fitted. */
+  readonly says?: string;
+  /** Of a raw value; NaN where the curve never gets there. */
+  readonly concentration: (raw: number) => number;
+  readonly raw: (concentration: number) => number;
+  /** Concentration per raw value, at a raw value. */
+  readonly slope: (raw: number) => number;
+  /** Change of the concentration at a raw value for one standard deviation of each thing that the standards leave open. */
+  readonly doubts: (raw: number) => readonly number[];
+}
+
+/** The concentration of every point of a reading, SI; undefined for a draft. */
+export const concentrationsOf = ({ stages, series }: Reading): Float64Array | undefined =>
+  stages[stages.length - 1]?.value ?? series?.value;

@@ -1,5 +1,6 @@
 import { chemistryEntries } from "./catalogue/chemistry.js";
 import { dataEntries } from "./catalogue/data.js";
+import { detectorEntries } from "./catalogue/detectors.js";
 import { flowEntries } from "./catalogue/flows.js";
 import { libraryEntries } from "./catalogue/library.js";
 import { nameEntries } from "./catalogue/names.js";
@@ -21,6 +22,7 @@ export const catalogueGroups = {
   "Zones and their tables": zoneEntries,
   "Parts and variants": reuseEntries,
   "Trials and their tables": dataEntries,
+  Detectors: detectorEntries,
   "Chemistries and duties": chemistryEntries,
   "Fits: before they run, and what to know of their results": runEntries,
   Studies: studyEntries,
@@ -37,6 +39,7 @@ export const catalogue = {
   ...zoneEntries,
   ...reuseEntries,
   ...dataEntries,
+  ...detectorEntries,
   ...chemistryEntries,
   ...runEntries,
   ...studyEntries,

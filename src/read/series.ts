@@ -17,6 +17,8 @@ export interface Series {
   readonly valueUnit: Unit;
   /** Rows whose value was a declared word for missing, or empty. */
   readonly missing: number;
+  /** A second value of each row, SI: the temperature of the sample. */
+  readonly beside?: Float64Array;
 }
 
 /** What a document says of a table over time. Without unit and format, the times must give their own format away. */
@@ -26,6 +28,8 @@ export interface SeriesSpec {
   readonly time: { readonly column: string | number; readonly at: Span; readonly unit: Unit | undefined };
   readonly format: ClockFormat | undefined;
   readonly value: { readonly column: string | number; readonly at: Span; readonly unit: Unit };
+  /** A second column of values: a row that has none counts as missing. */
+  readonly beside?: { readonly column: string | number; readonly at: Span; readonly unit: Unit } | undefined;
   readonly csv: CsvOptions;
   /** The unit that clock times are shown in. */
   readonly shownTime: Unit;
@@ -43,10 +47,11 @@ export interface ReadSeries {
  */
 export function readSeries(source: Source, spec: SeriesSpec, report: Report): ReadSeries | undefined {
   const table = readCsv(source, spec.csv, report);
-  const data = table && dataRows(table, [spec.time, spec.value], spec.csv, report);
+  const asked = [spec.time, spec.value, ...(spec.beside ? [spec.beside] : [])];
+  const data = table && dataRows(table, asked, spec.csv, report);
   if (!table || !data) return undefined;
   const decimal = decimalOf(table, data, spec.csv);
-  const [timeColumn, valueColumn] = data.columns;
+  const [timeColumn, valueColumn, besideColumn] = data.columns;
   const clock = spec.time.unit ? undefined : (spec.format ?? guessFormat(table, data.rows, timeColumn, spec, report));
   if (!clock && !spec.time.unit) return undefined;
   const readTime = (cell: string): number | undefined => {
@@ -59,6 +64,7 @@ export function readSeries(source: Source, spec: SeriesSpec, report: Report): Re
   const time = new Float64Array(rows.length);
   const value = new Float64Array(rows.length);
   const row = new Int32Array(rows.length);
+  const beside = new Float64Array(spec.beside ? rows.length : 0);
   const { factor, offset } = spec.value.unit;
   let [n, missing, shift, last] = [0, 0, 0, Number.NEGATIVE_INFINITY];
   let notTime: Wrong | undefined;
@@ -88,15 +94,22 @@ export function readSeries(source: Source, spec: SeriesSpec, report: Report): Re
       twice = countWrong(twice, r, timeColumn);
     }
     last = t;
-    if (isMissing(valueCell, spec.csv)) {
+    const besideCell = spec.beside ? (r.cells[besideColumn] ?? "") : "0";
+    if (isMissing(valueCell, spec.csv) || isMissing(besideCell, spec.csv)) {
       missing++;
       continue;
     }
     const number = readNumber(valueCell, decimal);
+    const second = readNumber(besideCell, decimal);
     if (number === undefined || !Number.isFinite(number)) {
       notNumber = countWrong(notNumber, r, valueColumn);
       continue;
     }
+    if (second === undefined || !Number.isFinite(second)) {
+      notNumber = countWrong(notNumber, r, besideColumn);
+      continue;
+    }
+    if (spec.beside) beside[n] = second * spec.beside.unit.factor + spec.beside.unit.offset;
     time[n] = t;
     value[n] = number * factor + offset;
     row[n] = r.line;
@@ -147,6 +160,7 @@ export function readSeries(source: Source, spec: SeriesSpec, report: Report): Re
     timeUnit: spec.time.unit ?? spec.shownTime,
     valueUnit: spec.value.unit,
     missing,
+    ...(spec.beside ? { beside: beside.slice(0, n) } : {}),
   };
   return { series, clock };
 }

@@ -1,10 +1,11 @@
-import type { Injection, Series } from "../model/trial.js";
+import type { Injection } from "../model/trial.js";
 import type { Value } from "../model/value.js";
 import type { Report } from "../problems/report.js";
-import { child, type MapNode, type Tree, textOf } from "../read/tree.js";
+import type { Files } from "../read/files.js";
+import { child, type MapNode, type Tree } from "../read/tree.js";
 import { dimensions } from "../units/dimension.js";
 import { resolveDetectorValue } from "./detector.js";
-import { resolveCalibration, resolveLeaveOut } from "./reading.js";
+import { resolveInlet } from "./inlet.js";
 import { aboveZero } from "./sign.js";
 import type { TrialClock } from "./trial-clock.js";
 import type { ResolvedTable } from "./trial-table.js";
@@ -16,15 +17,17 @@ export function resolveInjection(
   table: ResolvedTable | undefined,
   clock: TrialClock,
   anyWord: boolean,
+  files: Files,
   report: Report,
 ): Injection | undefined {
   const at = child(node, "at");
-  const form = resolveForm(node, table, clock, anyWord, report);
+  const written = child(node, "start");
+  const given = written && startOf(written, clock, report);
+  const form = resolveForm(node, table, given, clock, anyWord, files, report);
   const lasting = resolveValue(child(node, "lasting"), dimensions.time, emptyScope, report);
   if (!aboveZero("the time that an injection takes", lasting, true, report)) return undefined;
   const first = form?.is === "signal" ? form.table.time[0] : clock.format ? clock.first : 0;
-  const startNode = child(node, "start");
-  const start = startNode ? startOf(startNode, clock, report) : first;
+  const start = written ? given : first;
   if (!form || start === undefined || at?.type !== "scalar") return undefined;
   return { at: at.text, where: at.at, start, lasting: lasting?.of([]) ?? 0, form };
 }
@@ -41,8 +44,10 @@ function startOf(node: Tree, clock: TrialClock, report: Report): number | undefi
 function resolveForm(
   node: MapNode,
   table: ResolvedTable | undefined,
+  start: number | undefined,
   clock: TrialClock,
   anyWord: boolean,
+  files: Files,
   report: Report,
 ): Injection["form"] | undefined {
   // Exactly one is there: the shape check has seen to it.
@@ -54,8 +59,7 @@ function resolveForm(
     return amount && aboveZero("the amount of tracer", amount, false, report) ? { is: "pulse", amount } : undefined;
   }
   if (is === "signal") {
-    const inlet = table && written?.type === "map" ? inletSeries(written, table, clock, report) : undefined;
-    return inlet && { is: "signal", table: inlet };
+    return table && written?.type === "map" ? resolveInlet(written, table, start, clock, files, report) : undefined;
   }
   const level = resolveDetectorValue(written?.type === "map" ? child(written, "to") : written, anyWord, report);
   const fromNode = child(written, "from");
@@ -68,31 +72,6 @@ function resolveForm(
   return levels.every(([what, value]) => aboveZero(what, value, true, report))
     ? { is: "step", level, from }
     : undefined;
-}
-
-/** A measured inlet, cleaned as declared: calibrated, stretches left out, the sample line's delay taken off. */
-function inletSeries(node: MapNode, table: ResolvedTable, clock: TrialClock, report: Report): Series | undefined {
-  const baseline = child(node, "baseline");
-  if (baseline && textOf(node, "baseline") !== "none") report("signal-key", baseline.at, { key: "baseline" });
-  const lag = child(child(node, "line"), "lag");
-  if (lag) report("signal-key", lag.at, { key: "lag" });
-  const delay = resolveValue(child(child(node, "line"), "delay"), dimensions.time, emptyScope, report);
-  const calibration = resolveCalibration(child(node, "calibration"), table.valueUnit, report);
-  const leaveOut = resolveLeaveOut(child(node, "leave-out"), table.series, clock, report);
-  if (calibration === "faulty" || !aboveZero("the delay of a sample line", delay, true, report)) return undefined;
-  const { time, value, row } = table.series;
-  const kept = Array.from(time.keys()).filter(
-    (i) => !leaveOut.some(({ from, to }) => time[i] >= from && time[i] <= to),
-  );
-  const late = delay?.of([]) ?? 0;
-  const { blank, rise, per } = calibration ?? { blank: 0, rise: 1, per: 1 };
-  return {
-    ...table.series,
-    time: Float64Array.from(kept, (i) => time[i] - late),
-    value: Float64Array.from(kept, (i) => ((value[i] - blank) / rise) * per),
-    row: Int32Array.from(kept, (i) => row[i]),
-    valueUnit: calibration?.perUnit ?? table.valueUnit,
-  };
 }
 
 /** Keys under which an injection or a reading holds a table. */

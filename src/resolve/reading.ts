@@ -1,11 +1,15 @@
 import type { Calibration, Reading, Series } from "../model/trial.js";
-import type { Value } from "../model/value.js";
 import type { Report } from "../problems/report.js";
+import type { Files } from "../read/files.js";
 import { child, itemsOf, type MapNode, type Tree, textOf } from "../read/tree.js";
 import { dimensions, sameDimension } from "../units/dimension.js";
+import { formatQuantity } from "../units/format.js";
 import type { Unit } from "../units/unit.js";
+import { resolveCalibration, sameSignal } from "./calibration.js";
 import { resolveDetectorValue } from "./detector.js";
+import { resolvePlaces } from "./places.js";
 import { aboveZero } from "./sign.js";
+import { censor, correct, resolveCounting, resolveLimits, type Staged } from "./stages.js";
 import type { TrialClock } from "./trial-clock.js";
 import type { ResolvedTable } from "./trial-table.js";
 import { emptyScope, resolveValue } from "./value.js";
@@ -20,27 +24,37 @@ export function resolveReading(
   table: ResolvedTable | undefined,
   clock: TrialClock,
   planned: Unit,
+  files: Files,
   report: Report,
 ): Reading | undefined {
-  const at = child(node, "at");
+  const drawn = resolvePlaces(child(node, "at"), report);
   const line = child(node, "line");
   const delay = resolveValue(child(line, "delay"), dimensions.time, emptyScope, report);
   const lag = resolveValue(child(line, "lag"), dimensions.time, emptyScope, report);
   const raw = table?.valueUnit;
-  const calibration = resolveCalibration(child(node, "calibration"), raw, report);
-  if (calibration === "faulty" || at?.type !== "scalar") return undefined;
+  const calibration = resolveCalibration(child(node, "calibration"), raw, files, report);
+  if (calibration === "faulty" || !drawn) return undefined;
   const unit = calibration?.perUnit ?? raw ?? planned;
   const noise = resolveNoise(child(node, "noise"), unit, raw, calibration, report);
+  const limits = resolveLimits(child(node, "limits"), unit, calibration, report);
   const leaveOut = resolveLeaveOut(child(node, "leave-out"), table?.series, clock, report);
   const right =
     aboveZero("the delay of a sample line", delay, true, report) &&
     aboveZero("the lag of a detector", lag, true, report);
-  if (!right || noise === "faulty") return undefined;
+  if (!right || noise === "faulty" || limits === "faulty") return undefined;
+  const staged = table ? correct(table.series, node, calibration, noise?.counting, report) : draft;
+  if (!staged) return undefined;
+  const value = staged.stages[staged.stages.length - 1]?.value ?? table?.series.value;
+  if (table && calibration?.range) warnBeyond(table.series, staged, calibration, limits, node, report);
   const baseline = textOf(node, "baseline");
   return {
-    at: at.text,
-    where: at.at,
+    at: drawn.at,
+    where: child(node, "at")?.at ?? node.at,
+    places: drawn.places,
     series: table?.series,
+    ...staged,
+    censored: value && censor(value, limits),
+    limits,
     calibration,
     baseline: baseline === "constant" || baseline === "drift" ? baseline : "none",
     scale: textOf(node, "scale") === "free" ? "free" : "known",
@@ -51,39 +65,35 @@ export function resolveReading(
   };
 }
 
-/** `calibration:`; undefined where there is none, "faulty" where it is wrong and reported. */
-export function resolveCalibration(
-  node: Tree | undefined,
-  raw: Unit | undefined,
-  report: Report,
-): Calibration | undefined | "faulty" {
-  if (!node) return undefined;
-  const blank = resolveDetectorValue(child(node, "blank"), true, report);
-  const rise = resolveDetectorValue(child(node, "rise"), true, report);
-  const per = resolveDetectorValue(child(node, "per"), false, report);
-  if (!rise || !per?.unit || (child(node, "blank") && !blank)) return "faulty";
-  let right = aboveZero("the concentration `per`", per, false, report);
-  const signal = raw ?? rise.unit;
-  for (const [what, value] of [
-    ["`blank`", blank],
-    ["`rise`", rise],
-  ] as const) {
-    if (!value || !signal || sameSignal(value, signal)) continue;
-    report("reading-unit", value.at, { what, unit: value.unit?.name || "no unit", reading: signal.name });
-    right = false;
-  }
-  // A rise may be negative: some detectors fall with concentration.
-  if (rise.of([]) === 0) {
-    report("rise-zero", rise.at, {});
-    right = false;
-  }
-  return right ? { blank: blank?.of([]) ?? 0, rise: rise.of([]), per: per.of([]), perUnit: per.unit } : "faulty";
-}
+const draft: Staged = { stages: [], doubts: [] };
 
-/** Detectors' own words are one dimension: only the same word is the same unit. */
-const sameSignal = (value: Value, unit: Unit): boolean =>
-  sameDimension(value.dimension, unit.dimension) &&
-  (!sameDimension(unit.dimension, dimensions.signal) || value.unit?.name === unit.name);
+/** Readings that no standard covers are told; those beyond the declared limits are not believed anyway. */
+function warnBeyond(
+  series: Series,
+  { stages }: Staged,
+  { range, rawUnit }: Calibration,
+  { below, above }: Reading["limits"],
+  node: MapNode,
+  report: Report,
+): void {
+  if (!range) return;
+  const calibrated = stages[stages.length - 1].value;
+  const raw = stages[stages.length - 2]?.value ?? series.value;
+  const slack = 0.02 * (range[1] - range[0]);
+  const beyond = [...raw.keys()].filter(
+    (i) =>
+      raw[i] > range[1] + slack &&
+      (above === undefined || calibrated[i] < above) &&
+      (below === undefined || calibrated[i] > below),
+  );
+  if (beyond.length === 0) return;
+  const most = beyond.reduce((top, i) => Math.max(top, raw[i]), range[1]);
+  report("standards-exceeded", child(node, "calibration")?.at ?? node.at, {
+    points: beyond.length,
+    most: formatQuantity(most, rawUnit),
+    last: formatQuantity(range[1], rawUnit),
+  });
+}
 
 function resolveNoise(
   node: Tree | undefined,
@@ -97,12 +107,13 @@ function resolveNoise(
   const relativeNode = child(node, "relative");
   const written = resolveDetectorValue(floorNode, true, report);
   const relative = resolveValue(relativeNode, dimensions.ratio, emptyScope, report);
-  if ((floorNode && !written) || (relativeNode && !relative)) return "faulty";
+  const counting = resolveCounting(child(node, "counting"), raw, report);
+  if ((floorNode && !written) || (relativeNode && !relative) || counting === "faulty") return "faulty";
   if (!aboveZero("the floor of the noise", written, true, report)) return "faulty";
   if (!aboveZero("the relative noise", relative, true, report)) return "faulty";
   let floor = written;
   if (written && !sameDimension(written.dimension, unit.dimension)) {
-    if (!calibration || !raw || !sameSignal(written, raw)) {
+    if (!calibration || !sameSignal(written, calibration.rawUnit)) {
       report("reading-unit", written.at, {
         what: "`floor`",
         unit: written.unit?.name || "no unit",
@@ -110,10 +121,10 @@ function resolveNoise(
       });
       return "faulty";
     }
-    const slope = Math.abs(calibration.per / calibration.rise);
+    const slope = Math.abs(calibration.slope(calibration.raw(0)));
     floor = { ...written, dimension: unit.dimension, unit, of: (env) => written.of(env) * slope };
   }
-  return { floor, relative: relative?.of([]) };
+  return { floor, relative: relative?.of([]), ...(counting ? { counting } : {}) };
 }
 
 /** `leave-out:` on the trial's clock; warns of stretches that no point lies in. */

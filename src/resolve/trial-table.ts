@@ -5,7 +5,7 @@ import { decodeText } from "../read/decode.js";
 import type { Files } from "../read/files.js";
 import { openTable } from "../read/open.js";
 import { beside } from "../read/paths.js";
-import { type ReadSeries, readSeries } from "../read/series.js";
+import { type ReadSeries, readSeries, type SeriesSpec } from "../read/series.js";
 import { child, itemsOf, type MapNode, type Tree, textOf } from "../read/tree.js";
 import { dimensions } from "../units/dimension.js";
 import { parseUnit } from "../units/parse.js";
@@ -34,6 +34,8 @@ export function resolveTable(node: MapNode, anyWord: boolean, files: Files, repo
   const timeUnit = resolveUnit(child(child(node, "time"), "unit"), dimensions.time, report);
   const valueUnit = resolveDetectorUnit(child(node, "value"), "unit", anyWord, report);
   const units = checkUnits(node, timeUnit, valueUnit, report);
+  const warm = temperatureColumn(child(child(node, "calibration"), "temperature"), fileNode, report);
+  if (warm === "faulty") return undefined;
   if (content === undefined || !time || !value || !valueUnit || format === "faulty" || !units) return undefined;
   const spec = {
     file: full,
@@ -41,11 +43,19 @@ export function resolveTable(node: MapNode, anyWord: boolean, files: Files, repo
     time: { ...time, unit: timeUnit },
     format,
     value: { ...value, unit: valueUnit },
+    beside: warm,
     csv: csvOptions(child(node, "csv")),
     shownTime: minute,
   };
   const read = readSeries({ path: full, text: decodeText(content) }, spec, report);
   return read && { ...read, valueUnit };
+}
+
+function temperatureColumn(node: Tree | undefined, file: Tree, report: Report): SeriesSpec["beside"] | "faulty" {
+  if (!node) return undefined;
+  const name = column(node, file);
+  const unit = resolveUnit(child(node, "unit"), dimensions.temperature, report);
+  return name && unit ? { ...name, unit } : "faulty";
 }
 
 const minute: Unit = { name: "min", factor: 60, offset: 0, dimension: dimensions.time };

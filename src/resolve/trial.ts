@@ -10,6 +10,7 @@ import { resolveContents } from "./contents.js";
 import { resolveInjection, signalNode } from "./injection.js";
 import { resolveReading } from "./reading.js";
 import { aboveZero } from "./sign.js";
+import { resolveTracer } from "./tracer.js";
 import { type TrialClock, trialClock } from "./trial-clock.js";
 import { knownUnit, type ResolvedTable, resolveTable } from "./trial-table.js";
 import { emptyScope, resolveValue, type Scope } from "./value.js";
@@ -44,7 +45,7 @@ export function resolveTrial(
 
   const onClock = (t: ResolvedTable | undefined): ResolvedTable | undefined => t && moved(t, -clock.originOf(t.clock));
   const injections = injectionNodes.map((node, i) =>
-    resolveInjection(node, onClock(inletTables[i]), clock, free, report),
+    resolveInjection(node, onClock(inletTables[i]), clock, free, files, report),
   );
   const contents = resolveContents(child(tree, "contents"), clock, free, report);
   const start = injections[0]?.start ?? contents?.begins ?? 0;
@@ -54,14 +55,17 @@ export function resolveTrial(
   const readings = readingNodes.map((node, i) => {
     const missing = child(node, "file") !== undefined && readTables[i] === undefined;
     const own = afterMidnight(onClock(readTables[i]), start, clock);
-    const reading = resolveReading(node, own, clock, planned, report);
+    const reading = resolveReading(node, own, clock, planned, files, report);
     return missing ? undefined : reading;
   });
   const flows = values(child(tree, "flows"), dimensions.flow, scope, report);
   for (const flow of flows.values()) if (flow.uses.length === 0) aboveZero("the flow of a feed", flow, true, report);
   const settings = values(child(tree, "with"), "any", scope, report);
-  const whole = [...injections, ...readings].every((part) => part !== undefined);
+  const tracer = resolveTracer(child(tree, "tracer"), report);
+  const whole = tracer !== "faulty" && [...injections, ...readings].every((part) => part !== undefined);
   if (!whole || (child(tree, "contents") && !contents)) return undefined;
+  if (contents && tracer?.loss)
+    report("not-yet", child(tree, "contents")?.at ?? tree.at, { what: "`contents` beside a `loss` of the tracer" });
   return {
     title: textOf(tree, "trial") ?? "",
     at: title?.at ?? tree.at,
@@ -73,6 +77,7 @@ export function resolveTrial(
     injections: injections.filter((part) => part !== undefined),
     ...(contents ? { contents } : {}),
     readings: readings.filter((part) => part !== undefined),
+    ...(tracer ? { tracer } : {}),
     ...(clock.format ? { clock: clock.format } : {}),
   };
 }

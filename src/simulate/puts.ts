@@ -20,18 +20,25 @@ export interface Put {
   readonly still?: { readonly node: number; readonly level: number; readonly amount: number };
 }
 
-/** All that a trial puts in: its injections, and what is in the vessel at the start. */
-export function putsOf(plant: Plant, trial: Trial): Put[] {
+/**
+ * All that a trial puts in: its injections, and what is in the vessel at the start.
+ * @param plant  as the tracer sees it
+ * @param liquid as the liquid does, for what enters with it; the same where the tracer is neither lost nor held back
+ */
+export function putsOf(plant: Plant, trial: Trial, liquid: Plant = plant): Put[] {
   const injections = trial.injections.map((injection): Put => {
     const entry = plant.entry.get(injection.at);
     if (entry === undefined) throw new RangeError(`no place '${injection.at}' in the network`);
-    return { entry, start: injection.start, ...driveOf(plant, injection) };
+    return { entry, start: injection.start, ...driveOf(liquid, injection, trial.tracer?.decay) };
   });
   return trial.contents ? [...contentPuts(plant, trial.contents), ...injections] : injections;
 }
 
-/** The tracer rate of an injection from its start on, beside a rate `before` that the vessel is in balance with. */
-export function driveOf(plant: Plant, injection: Injection): { drive: Drive; before: number } {
+/**
+ * The tracer rate of an injection from its start on, beside a rate `before` that the vessel is in balance with.
+ * @param decay 1/s: what a measured inlet shows later is brought back to the start of the injection
+ */
+export function driveOf(plant: Plant, injection: Injection, decay = 0): { drive: Drive; before: number } {
   const { form, lasting } = injection;
   if (form.is === "pulse") {
     const amount = form.amount.of(plant.env);
@@ -45,18 +52,24 @@ export function driveOf(plant: Plant, injection: Injection): { drive: Drive; bef
     const before = (form.from?.of(plant.env) ?? 0) * perFlow;
     return { drive: constantRate(form.level.of(plant.env) * perFlow - before, lasting || undefined), before };
   }
-  return { drive: signalDrive(form.table.time, form.table.value, flow, injection.start), before: 0 };
+  const { table, lag = 0 } = form;
+  const value =
+    decay === 0 ? table.value : table.value.map((c, i) => c * Math.exp(decay * (table.time[i] - injection.start)));
+  return { drive: signalDrive(table.time, value, flow, injection.start, lag), before: 0 };
 }
 
-/** A measured inlet, straight between its points, nothing before the first and its last value after the last. */
-function signalDrive(time: Float64Array, value: Float64Array, flow: number, start: number): Drive {
+/**
+ * A measured inlet, straight between its points, nothing before the first and its last value after the last. Where a
+ * detector with a lag saw it, what entered is the reading and lag times its slope: y' = (c - y) / lag, exact on each piece.
+ */
+function signalDrive(time: Float64Array, value: Float64Array, flow: number, start: number, lag: number): Drive {
   const n = time.length;
   const slope = new Float64Array(n);
   for (let i = 0; i + 1 < n; i++) {
     const span = time[i + 1] - time[i];
     slope[i] = span > 0 ? ((value[i + 1] - value[i]) / span) * flow : 0;
   }
-  return { amount: 0, times: time.map((t) => t - start), level: value.map((c) => c * flow), slope };
+  return { amount: 0, times: time.map((t) => t - start), level: value.map((c, i) => c * flow + lag * slope[i]), slope };
 }
 
 /**

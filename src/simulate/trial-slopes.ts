@@ -26,7 +26,11 @@ export interface MovedResponse {
 
 /** Are there these derivatives? For plants of the exact engine, but for closed ones and trials that start with tracer inside. */
 export const hasSlopes = (plant: Plant, trial: Trial): boolean =>
-  !plant.columns.part.includes(Part.Block) && !isClosed(plant) && trial.contents === undefined;
+  !plant.columns.part.includes(Part.Block) &&
+  !isClosed(plant) &&
+  trial.contents === undefined &&
+  trial.tracer === undefined &&
+  trial.readings.every((r) => r.places.length === 1);
 
 /**
  * `trialResponse` with exact derivatives: those of the compiled balances are integrated beside them, and what a tube delays

@@ -3,24 +3,51 @@ import type { Reading, Trial } from "../model/trial.js";
 import { moments } from "./moments.js";
 import { type Put, putsOf } from "./puts.js";
 import { type AnyEngine, trace } from "./trace.js";
+import { tracerPlant } from "./tracer-plant.js";
 import type { NodeLook, Tracing } from "./tracing.js";
 
 /**
  * What every probe of a trial would read, as concentration (SI) on the trial's clock: dose, flows and sample line as
  * declared, no baseline, no noise. Superposition over the injections and what was inside at the start, each exact.
- * @param plant  compiled for the flows and constants of the day
+ * @param liquid compiled for the flows and constants of the day
  * @param wanted times per reading of the trial, s on the trial's clock, ascending
  * @returns one array per reading, as long as its times
  */
 export function trialResponse(
+  liquid: Plant,
+  trial: Trial,
+  wanted: readonly { readonly time: Float64Array }[],
+  engine?: AnyEngine,
+): Float64Array[] {
+  const plant = tracerPlant(liquid, trial.tracer);
+  const single = trial.readings.every((r) => r.places.length === 1);
+  if (single) return seenSingly(plant, liquid, trial, wanted, engine);
+  const parts = trial.readings.flatMap((r, i) =>
+    r.places.map(({ name, share }) => ({ i, share, reading: { ...r, at: name } })),
+  );
+  const readings = parts.map(({ reading }) => reading);
+  const times = parts.map(({ i }) => wanted[i]);
+  const curves = seenSingly(plant, liquid, { ...trial, readings }, times, engine);
+  const sums = wanted.map(({ time }) => new Float64Array(time.length));
+  parts.forEach(({ i, share }, p) => {
+    for (let k = 0; k < sums[i].length; k++) sums[i][k] += share * curves[p][k];
+  });
+  return sums;
+}
+
+/** The same where every reading draws from one place, `at`; the liquid's plant tells flows, the tracer's all else. */
+function seenSingly(
   plant: Plant,
+  liquid: Plant,
   trial: Trial,
   wanted: readonly { readonly time: Float64Array }[],
   engine?: AnyEngine,
 ): Float64Array[] {
   const sums = wanted.map(({ time }) => new Float64Array(time.length));
   const last = wanted.reduce((m, { time }) => Math.max(m, time[time.length - 1] ?? 0), 0);
-  for (const put of putsOf(plant, trial)) {
+  const decay = trial.tracer?.decay ?? 0;
+  for (const put of putsOf(plant, trial, liquid)) {
+    const own = wanted.map(({ time }) => new Float64Array(time.length));
     const tracing = trace(plant, put.entry, last - put.start, engine);
     const steady = typeof put.entry === "number" && put.before !== 0 ? moments(plant, put.entry) : [];
     const seenAt = trial.readings.map((reading) => seenBy(plant, reading));
@@ -28,15 +55,16 @@ export function trialResponse(
       // A vessel that starts in balance with `from` reads this before anything changes.
       const settled = put.before === 0 ? 0 : (put.before * steady[node].share) / plant.nodes[node].inflow;
       const level = settled + (put.still?.node === node ? put.still.level : 0);
-      if (level !== 0) for (let k = 0; k < sums[i].length; k++) sums[i][k] += level;
+      if (level !== 0) own[i].fill(level);
       const from = put.begins ?? Number.NEGATIVE_INFINITY;
       const times = wanted[i].time.map((t) => Math.max(t - delay, from) - put.start);
       return { node, times, lag, integral: false };
     });
     const { seen } = tracing.see(put.drive, looks);
-    if (put.begins !== undefined) addSettled(sums, tracing, put, seenAt, wanted);
+    if (put.begins !== undefined) addSettled(own, tracing, put, seenAt, wanted);
     seen.forEach((s, i) => {
-      for (let k = 0; k < s.value.length; k++) sums[i][k] += s.value[k];
+      const left = (t: number): number => (decay === 0 ? 1 : Math.exp(-decay * (t - (put.begins ?? put.start))));
+      for (let k = 0; k < s.value.length; k++) sums[i][k] += left(wanted[i].time[k]) * (own[i][k] + s.value[k]);
     });
   }
   return sums;

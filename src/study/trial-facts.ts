@@ -5,6 +5,7 @@ import type { WayOut } from "../data/result.js";
 import { isClosed, type Network } from "../model/network.js";
 import type { Study } from "../model/study.js";
 import type { Trial } from "../model/trial.js";
+import { tracerPlant } from "../simulate/tracer-plant.js";
 import { dimensions } from "../units/dimension.js";
 
 /** What the log alone cannot know: flow and volume of the vessel on the day, from the first rival that can tell. */
@@ -28,6 +29,8 @@ export function vesselFacts(network: Network, trial: Trial): MomentsOptions {
   );
   const relative = spread / throughflow;
   const known = (value: number, share: number) => (share > 0 ? { value, sd: value * share } : { value });
+  const retained = trial.tracer?.retained;
+  const volume = retained ? tracerPlant(plant, { retained }).volume.total : plant.volume.total;
   const total = network.names.find((n) => n.role === "constant" && n.value.of(plant.env) === plant.volume.total);
   const volumeSd = total?.value.sd?.(plant.env) ?? 0;
   return {
@@ -38,7 +41,7 @@ export function vesselFacts(network: Network, trial: Trial): MomentsOptions {
       return flow === undefined ? undefined : known(flow, relative);
     },
     throughflow: known(throughflow, relative),
-    volume: known(plant.volume.total, volumeSd / plant.volume.total),
+    volume: known(volume, volumeSd / plant.volume.total),
     ...placesOf(plant),
   };
 }

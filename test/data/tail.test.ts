@@ -20,7 +20,11 @@ function called(
   return Array.from({ length: seeds }, (_, seed) => {
     const { normal } = random(seed + 1);
     const y = clean.map((v) => v + sd * normal());
-    return tailOf(t, y, noise === 0 ? noiseOf(t, y, 0, undefined).sd : t.map(() => sd)).is;
+    return tailOf(
+      t,
+      y,
+      noise === 0 ? noiseOf(t, y, 0, { noise: undefined, calibration: undefined }).sd : t.map(() => sd),
+    ).is;
   });
 }
 

@@ -50,7 +50,7 @@ readings:
   const [r] = trial?.readings ?? [];
   expect(r.series?.time[0]).toBe(nine);
   expect(r.series?.value[0]).toBeCloseTo(0.021, 12); // S/m
-  expect(r.calibration).toMatchObject({ per: 1 });
+  expect(r.calibration?.slope(0)).toBeCloseTo(1 / 0.19, 12); // kg/m3 per S/m
   expect(r.unit.name).toBe("g/L");
   expect(r.line.delay?.of([])).toBeCloseTo(18, 12);
   expect(r.noise?.floor?.of([])).toBeCloseTo(0.01, 12);

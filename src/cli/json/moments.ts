@@ -27,7 +27,7 @@ function readingJson(r: ReadingMoments): object {
     percentilesApproximate: r.percentilesShifted,
     indices: Object.fromEntries(Object.entries(r.indices).map(([name, f]) => [camel(name), figureJson(f)])),
     tail: tailJson(r),
-    noise: { sd: figureJson(r.noise.sd), from: r.noise.from },
+    noise: { ...r.noise, sd: figureJson(r.noise.sd) },
     steps: r.steps.map((s) => stepJson(s, time)),
     curve: r.curve
       ? { time: series(r.curve.time, time), E: series(r.curve.E, perUnit(time)), F: series(r.curve.F, one) }

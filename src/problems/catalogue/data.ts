@@ -198,9 +198,10 @@ export const dataEntries = {
       `an injection in ${amount} makes a concentration in ${wanted}; the reading at '${at}' is in ${reading}`,
     fix: "give the reading a calibration to that unit, or `scale: free` where only the shape is trusted",
   }),
-  "signal-key": entry<{ key: string }>({
+  "inlet-baseline": entry<{ before: number }>({
     severity: "error",
-    says: ({ key }) => `'${key}' of a measured inlet is part of the language, but this version does not honour it yet`,
-    fix: "take it out; `calibration`, `leave-out` and `line: {delay: …}` are honoured there",
+    says: ({ before }) =>
+      `the baseline of a measured inlet is taken from the points before \`start\`: there ${before === 1 ? "is 1" : `are ${before}`}, and it takes 3`,
+    fix: "give the injection its `start`, with the table beginning before it; or take a blank off by `calibration`",
   }),
 } as const;

@@ -1,131 +1,13 @@
-import type { KeyShape, Shape } from "../shape.js";
-import {
-  choice,
-  column,
-  csv,
-  either,
-  heading,
-  later,
-  list,
-  name,
-  named,
-  oneOrMore,
-  quantity,
-  record,
-  text,
-} from "./common.js";
+import type { Shape } from "../shape.js";
+import { cleaning } from "./cleaning.js";
+import { choice, either, heading, list, name, named, oneOrMore, quantity, record, text } from "./common.js";
 
-const timeColumn: KeyShape = {
-  says: "The column of times: elapsed times with their `unit`, clock times or dates with their `format`. Times as `h:m:s` and ISO dates need neither.",
-  example: '{column: Time, format: "h:m:s"}',
-  snippet: "{column: t, unit: min}",
-  needs: "value",
-  shape: column("the times", {
-    format: {
-      shape: text,
-      says: "How clock times are written, from `d M y h m s` and `am` as the file has them: `h:m:s`, `h:m am`, `d.M.y h:m`. Dates need it where day and month could be confused. A clock without dates may pass midnight.",
-      example: '"h:m:s"',
-    },
-  }),
-};
-
-const valueColumn: KeyShape = {
-  says: "The column of readings, with the unit of the detector. Where there is a `calibration`, or `scale: free`, any word may be that unit.",
-  example: '{column: "Cond [mS/cm]", unit: mS/cm}',
-  snippet: "{column: c, unit: g/L}",
-  shape: column("the readings"),
-};
-
-const calibration: KeyShape = {
-  says: "From the unit of the detector to a concentration: (reading - blank) / rise * per.",
-  example: "{blank: 0.21 mS/cm, rise: 1.9 mS/cm, per: 1 g/L}",
-  shape: record({
-    blank: {
-      shape: quantity(),
-      says: "What the detector shows with no tracer, in its own unit.",
-      example: "0.21 mS/cm",
-      default: "0",
-    },
-    rise: {
-      shape: quantity(),
-      says: "By how much the reading rises at the concentration `per`; below zero where it falls.",
-      required: true,
-      example: "1.9 mS/cm",
-    },
-    per: {
-      shape: quantity(),
-      says: "The concentration that makes it rise by `rise`.",
-      required: true,
-      example: "1 g/L",
-    },
-    points: later("A calibration curve from a table."),
-    temperature: later("Compensation for the temperature of the sample."),
-  }),
-};
-
-/** A table over time with every cleaning key: a reading, or a measured inlet. */
-const cleaning: Record<string, KeyShape> = {
-  file: {
-    shape: text,
-    says: "The table as it was logged, a CSV file relative to this one. It is never edited: every step of cleaning is declared here.",
-    example: "v3-salt.csv",
-    snippet: "log.csv",
-    needs: "time",
-  },
-  time: timeColumn,
-  value: valueColumn,
-  csv,
-  calibration,
-  baseline: {
-    shape: choice("none", "constant", "drift"),
-    says: "What lies under the signal: nothing, an offset, or an offset that drifts in a straight line. A fit estimates it beside the parameters; `moments` takes it from before the injection and after the tail.",
-    default: "none",
-  },
-  line: {
-    says: "Sample line and detector between the vessel and the reading. They are part of the model, not of the vessel.",
-    example: "{delay: 0.3 min, lag: 0.1 min}",
-    shape: record({
-      delay: {
-        shape: quantity("time"),
-        says: "Time that the sample travels before it is read. A `±` makes it an unknown of the fit, held by that.",
-        example: "0.3 min",
-      },
-      lag: {
-        shape: quantity("time"),
-        says: "Time constant of the detector, taken as a first-order lag.",
-        example: "0.1 min",
-      },
-    }),
-  },
-  "leave-out": {
-    says: "Stretches of time whose readings count for nothing, both ends included, each with its reason.",
-    example: "[{from: 310 min, to: 320 min, because: air in the cell}]",
-    shape: list(
-      record({
-        from: {
-          shape: quantity("time"),
-          says: "Start of the stretch: a time as the table writes it, or elapsed since its first row.",
-          required: true,
-          example: "310 min",
-        },
-        to: { shape: quantity("time"), says: "End of the stretch, written alike.", required: true, example: "320 min" },
-        because: {
-          shape: text,
-          says: "Why these readings are not believed.",
-          required: true,
-          example: "air in the cell",
-        },
-      }),
-    ),
-  },
-};
-
-const weighted: Shape = { is: "later", sort: "map", says: "a reading of a weighted mix of several places" };
+const weighted: Shape = named({ is: "quantity", dimension: "ratio" }, "dotted");
 
 const reading: Shape = record({
   at: {
     shape: either(name, weighted),
-    says: "Where it is read: an outlet, a compartment (`chain.2` is the second of a chain) or a feed, always in what flows out of it.",
+    says: "Where it is read: an outlet, a compartment (`chain.2` is the second of a chain) or a feed, always in what flows out of it. Several places with shares are a mix of what flows out of them, as a common sample line draws it: `{upper: 60 %, lower: rest}`.",
     required: true,
     example: "product",
   },
@@ -149,10 +31,42 @@ const reading: Shape = record({
         says: "The part in proportion to the fitted concentration.",
         example: "1 %",
       },
-      counting: later("Counting statistics of a radioactive tracer."),
+      counting: {
+        says: "Counting statistics of a radioactive tracer: the variance is the counts themselves (Poisson), besides `floor` and `relative`. The column of values must be a rate of counts, such as cps.",
+        example: "{over: 1 s, dead-time: 3 us}",
+        shape: record({
+          over: {
+            shape: quantity("time"),
+            says: "How long each reading counted.",
+            required: true,
+            example: "1 s",
+          },
+          "dead-time": {
+            shape: quantity("time"),
+            says: "Time for which the detector is blind after each count. Readings are corrected to n / (1 - n d), as a counter does that a count while it is blind does not make blind for longer.",
+            default: "0 s",
+            example: "3 us",
+          },
+        }),
+      },
     }),
   },
-  limits: later("Beyond them a reading is censored, not believed."),
+  limits: {
+    says: "Beyond them a reading is censored: known to be at or below, at or above the limit, and no more. `moments` says what that leaves open; a fit counts how likely the model makes it.",
+    example: "{below: 0.02 g/L, above: 8 g/L}",
+    shape: record({
+      below: {
+        shape: quantity(),
+        says: "The limit of detection, as a concentration or in the unit of the detector.",
+        example: "0.02 g/L",
+      },
+      above: {
+        shape: quantity(),
+        says: "Where the detector saturates, as a concentration or in the unit of the detector.",
+        example: "8 g/L",
+      },
+    }),
+  },
 });
 
 const injection: Shape = record(
@@ -187,7 +101,7 @@ const injection: Shape = record(
     },
     signal: {
       shape: record(cleaning),
-      says: "A measured inlet: a table of what entered, cleaned as a reading is. `baseline` and the `lag` of a line are not honoured here yet.",
+      says: "A measured inlet: a table of what entered, cleaned as a reading is. Its `baseline` is taken from the points before `start` and, for a drift, from the last twentieth. A measured inlet holds what a plant brings round again, too.",
     },
     start: {
       shape: text,
@@ -233,7 +147,27 @@ export const trialShape = record({
     required: true,
     example: "[{at: product, file: v3-salt.csv, time: {column: t, unit: min}, value: {column: c, unit: g/L}}]",
   },
-  tracer: later("Decay, loss or retention of the tracer."),
+  tracer: {
+    says: "What the tracer does that the liquid does not.",
+    example: "{half-life: 15 h}",
+    shape: record({
+      "half-life": {
+        shape: quantity("time"),
+        says: "Radioactive decay, everywhere alike. Amounts and levels are those at `start` of their injection; what is dosed later has decayed till then. `moments` brings readings back to that time.",
+        example: "15 h",
+      },
+      loss: {
+        shape: quantity("frequency"),
+        says: "Loss of first order inside the vessel: reaction, sunlight, gas lost to the air. `moments` takes it out of the curve of a pulse and says so.",
+        example: "0.01 1/h",
+      },
+      retained: {
+        shape: named({ is: "quantity", dimension: "ratio" }, "dotted"),
+        says: "Bodies that hold the tracer back, each with its retention: the tracer sees so many times the volume of liquid (1 where it moves with the liquid). A number, or the name of a parameter or constant of the network.",
+        example: "{packing: 1.4}",
+      },
+    }),
+  },
   contents: {
     says: "Tracer in the vessel at the start, which is time zero (the first row, on a clock): concentrations by compartment, part or member (`chain.2`), evenly spread in each; `all` is what no other name covers. What is not named starts clean. Before the start nothing moves.",
     example: "{corner: 2 g/L}",

@@ -1,0 +1,37 @@
+import type { Retained, Tracer } from "../model/trial.js";
+import type { Report } from "../problems/report.js";
+import { child, entriesOf, type Tree } from "../read/tree.js";
+import { dimensions } from "../units/dimension.js";
+import { aboveZero } from "./sign.js";
+import { emptyScope, resolveValue } from "./value.js";
+
+/** `tracer:`; undefined where there is none, "faulty" where it is wrong and reported. */
+export function resolveTracer(node: Tree | undefined, report: Report): Tracer | undefined | "faulty" {
+  if (!node) return undefined;
+  const halfLife = resolveValue(child(node, "half-life"), dimensions.time, emptyScope, report);
+  const loss = resolveValue(child(node, "loss"), dimensions.frequency, emptyScope, report);
+  if ((child(node, "half-life") && !halfLife) || (child(node, "loss") && !loss)) return "faulty";
+  if (!aboveZero("the half-life of a tracer", halfLife, false, report)) return "faulty";
+  if (!aboveZero("the loss of a tracer", loss, true, report)) return "faulty";
+  const retained = entriesOf(child(node, "retained")).map(({ key, value }) => resolveRetained(key, value, report));
+  if (!retained.every((r) => r !== undefined)) return "faulty";
+  return {
+    ...(halfLife ? { decay: Math.LN2 / halfLife.of([]) } : {}),
+    ...(loss && loss.of([]) > 0 ? { loss: loss.of([]) } : {}),
+    ...(retained.length > 0 ? { retained } : {}),
+  };
+}
+
+/** A number above 0, or a lone name: which one it is the network knows. */
+function resolveRetained(
+  key: { readonly text: string; readonly at: Retained["at"] },
+  value: Tree,
+  report: Report,
+): Retained | undefined {
+  const body = { body: key.text, at: key.at };
+  if (value.type === "scalar" && /^[A-Za-z][\w.-]*$/.test(value.text.trim()))
+    return { ...body, factor: { name: value.text.trim(), at: value.at } };
+  const factor = resolveValue(value, dimensions.ratio, emptyScope, report);
+  if (!factor || !aboveZero("a retention", factor, false, report)) return undefined;
+  return { ...body, factor: factor.of([]) };
+}
