@@ -10,7 +10,7 @@ export type Work = "tracer" | "laplace" | "reaction";
 const limits: Readonly<Record<Work, { says: string; nodes: number; circle: number }>> = {
   tracer: { says: "compute tracer curves of", nodes: 20_000, circle: 20_000 },
   laplace: { says: "compute tracer curves by transfer functions of", nodes: 5_000, circle: 1_000 },
-  reaction: { says: "solve reaction in", nodes: 100_000, circle: 1_000 },
+  reaction: { says: "solve reaction in", nodes: 2_000_000, circle: 2_000_000 },
 };
 
 /** Why this version cannot do a work: bodies that only their transfer function describes (tracer), too many nodes. */

@@ -7,15 +7,18 @@ import { dot, type IterativeMethod, type IterativeProblem, norm } from "./krylov
  */
 export function bicgstab({ size: n, multiply, preconditioner }: IterativeProblem): IterativeMethod {
   const [r, shadow, p, v, t, y, z] = Array.from({ length: 7 }, () => new Float64Array(n));
-  return (b, x, { relative, most }) => {
+  return (b, x, { relative, most, rough }) => {
     const size = norm(b);
     const wanted = relative * size;
     let products = 0;
     let left = Number.POSITIVE_INFINITY;
     for (let attempt = 0; attempt < 30; attempt++) {
-      multiply(x, v);
-      products++;
-      for (let i = 0; i < n; i++) r[i] = b[i] - v[i];
+      if (rough && attempt === 0) r.set(b);
+      else {
+        multiply(x, v);
+        products++;
+        for (let i = 0; i < n; i++) r[i] = b[i] - v[i];
+      }
       const before = left;
       left = norm(r);
       if (left <= wanted) return { reached: true, residual: size > 0 ? left / size : 0, products };
@@ -30,29 +33,47 @@ export function bicgstab({ size: n, multiply, preconditioner }: IterativeProblem
         if (!(Math.abs(next) > 0) || !Number.isFinite(beta)) break;
         rho = next;
         for (let i = 0; i < n; i++) p[i] = r[i] + beta * (p[i] - omega * v[i]);
-        y.set(p);
-        preconditioner?.apply(y);
-        multiply(y, v);
+        const ahead = preconditioner ? y : p;
+        if (preconditioner) {
+          y.set(p);
+          preconditioner.apply(y);
+        }
+        multiply(ahead, v);
         alpha = rho / dot(shadow, v);
         if (!Number.isFinite(alpha)) break;
+        let squares = 0;
         for (let i = 0; i < n; i++) {
-          x[i] += alpha * y[i];
-          r[i] -= alpha * v[i];
+          x[i] += alpha * ahead[i];
+          const rest = r[i] - alpha * v[i];
+          r[i] = rest;
+          squares += rest * rest;
         }
         products++;
-        if (norm(r) <= wanted) break;
-        z.set(r);
-        preconditioner?.apply(z);
-        multiply(z, t);
+        if (Math.sqrt(squares) <= wanted) break;
+        const aside = preconditioner ? z : r;
+        if (preconditioner) {
+          z.set(r);
+          preconditioner.apply(z);
+        }
+        multiply(aside, t);
         products++;
-        omega = dot(t, r) / dot(t, t);
+        let [along, long] = [0, 0];
+        for (let i = 0; i < n; i++) {
+          along += t[i] * r[i];
+          long += t[i] * t[i];
+        }
+        omega = along / long;
         if (!(Math.abs(omega) > 0)) break;
+        squares = 0;
         for (let i = 0; i < n; i++) {
-          x[i] += omega * z[i];
-          r[i] -= omega * t[i];
+          x[i] += omega * aside[i];
+          const rest = r[i] - omega * t[i];
+          r[i] = rest;
+          squares += rest * rest;
         }
-        if (norm(r) <= wanted) break;
+        if (Math.sqrt(squares) <= wanted) break;
       }
+      if (rough && norm(r) <= wanted) return { reached: true, residual: norm(r) / size, products };
     }
     return { reached: false, residual: left / size, products };
   };

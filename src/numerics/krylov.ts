@@ -13,11 +13,13 @@ export interface IterativeGoal {
   readonly relative: number;
   /** Products with A after which it gives up. */
   readonly most: number;
+  /** x is zero, and the residual that the method itself keeps is believed: two products less, for rough solves. */
+  readonly rough?: boolean;
 }
 
 export interface Iterated {
   readonly reached: boolean;
-  /** |b - A x| / |b|, of the true residual. */
+  /** |b - A x| / |b|, of the true residual but for rough solves. */
   readonly residual: number;
   /** Products with A. */
   readonly products: number;

@@ -60,7 +60,10 @@ export function bindKinetics(
   const reactions = chemistry.reactions.map((reaction) => {
     const numbers = new Float64Array(n);
     for (const made of reaction.makes) numbers[made.species] += made.number(env);
-    return { reaction, numbers, persists: persistence(reaction.rate, env, scale, numbers) };
+    const persists = persistence(reaction.rate, env, scale, numbers);
+    const moved = Int32Array.from([...numbers.keys()].filter((i) => numbers[i] !== 0));
+    const scaled = Float64Array.from(moved, (i) => numbers[i] / scale[i]);
+    return { reaction, numbers, persists, helped: persists.includes(1), moved, scaled };
   });
   const slope = new Float64Array(n);
 
@@ -79,25 +82,26 @@ export function bindKinetics(
     production(y, at, out, to) {
       load(y, at, 0);
       for (let i = 0; i < n; i++) out[to + i] = 0;
-      for (const { reaction, numbers, persists } of reactions) {
+      for (let k = 0; k < reactions.length; k++) {
+        const { reaction, numbers, persists, helped, moved, scaled } = reactions[k];
         const asked = reaction.rate(env);
-        const rate = asked * supply(y, at, asked, numbers, persists, limited);
-        if (rate === 0) continue;
-        for (let i = 0; i < n; i++) out[to + i] += (numbers[i] * rate) / scale[i];
+        const rate = helped ? asked * supply(y, at, asked, numbers, persists, limited) : asked;
+        for (let m = 0; m < moved.length; m++) out[to + moved[m]] += scaled[m] * rate;
       }
     },
     jacobian(y, at, out, to) {
       out.fill(0, to, to + n * n);
       load(y, at, nearlyNone);
-      for (const { reaction, numbers, persists } of reactions) {
-        const rate = reaction.rate(env);
+      for (let k = 0; k < reactions.length; k++) {
+        const { reaction, numbers, persists, helped, moved, scaled } = reactions[k];
         reaction.gradient(env, slope);
-        const share = supply(y, at, rate, numbers, persists, limited);
+        const rate = helped ? reaction.rate(env) : 0;
+        const share = helped ? supply(y, at, rate, numbers, persists, limited) : 1;
         for (let j = 0; j < n; j++) {
           let d = Number.isFinite(slope[j]) ? slope[j] * scale[j] * share : 0;
           if (limited && persists[j] && consumes(rate, numbers[j]) && y[at + j] < depleted) d += rate / depleted;
           if (d === 0) continue;
-          for (let i = 0; i < n; i++) out[to + i * n + j] += (numbers[i] * d) / scale[i];
+          for (let m = 0; m < moved.length; m++) out[to + moved[m] * n + j] += scaled[m] * d;
         }
       }
     },

@@ -1,13 +1,26 @@
 import { type BlockMatrix, block, blockMatrix, clear, solveBlocks } from "./block-matrix.js";
 
 /** A square system F(y) = 0 in blocks, y >= 0. */
-export interface BlockSystem {
-  readonly count: number;
+export interface System {
+  /** Components of y in all, and of a block. */
+  readonly length: number;
   readonly size: number;
   /** Time constant of each block, s: what pseudo-time slows down; 0 where the equation has no memory. */
   readonly memory: Float64Array;
+  /** The least part of a component that a step leaves of it. */
+  readonly fall: number;
   /** Writes F(y); false where it cannot be evaluated. */
   residual(y: Float64Array, f: Float64Array): boolean;
+  /**
+   * Writes -(dF/dy - memory rate)^-1 f, `rate` in 1/s, 0 for Newton; at least to the relative accuracy asked. False where
+   * that cannot be had.
+   */
+  step(y: Float64Array, f: Float64Array, rate: number, relative: number, out: Float64Array): boolean;
+}
+
+/** The same by its Jacobian, for elimination. */
+export interface BlockSystem extends Pick<System, "size" | "memory" | "residual"> {
+  readonly count: number;
   /** Adds dF/dy into a matrix of zeros; false where it cannot be evaluated. */
   jacobian(y: Float64Array, m: BlockMatrix): boolean;
 }
@@ -21,7 +34,52 @@ export interface NewtonResult {
   readonly iterations: number;
 }
 
-const enough = { relative: 1e-11, absolute: 1e-16, rounding: 1e-10 };
+/** When a step no longer matters. */
+interface Enough {
+  readonly relative: number;
+  readonly absolute: number;
+  /** Or when the residual is this small, in the mean. */
+  readonly rms: number;
+}
+
+const rounding = 1e-10;
+/** No step is asked for more accurately than this. */
+const tightest = 1e-5;
+const byElimination: Enough = { relative: 1e-11, absolute: 1e-16, rms: 0 };
+/** Newton's method squares what a step leaves: far more than what it did not solve for. */
+const byIteration: Enough = { relative: 1e-6, absolute: 1e-15, rms: 1e-15 };
+
+/** Newton's method for a system with its Jacobian, by block elimination. */
+export function solveNewton(system: BlockSystem, y: Float64Array): NewtonResult {
+  return newton(eliminating(system), y, byElimination);
+}
+
+/** The same for one that solves for its steps itself, to an accuracy that tightens as the residual falls. */
+export const solveInexactNewton = (system: System, y: Float64Array): NewtonResult => newton(system, y, byIteration);
+
+function eliminating(system: BlockSystem): System {
+  const { count, size: n, memory } = system;
+  const m = blockMatrix(count, n);
+  return {
+    length: count * n,
+    size: n,
+    memory,
+    fall: 0.1,
+    residual: (y, f) => system.residual(y, f),
+    step(y, f, rate, _relative, out) {
+      clear(m);
+      if (!system.jacobian(y, m)) return false;
+      if (rate > 0) {
+        for (let k = 0; k < count; k++) {
+          const diagonal = block(m, k, k);
+          for (let i = 0; i < n; i++) diagonal[i * n + i] -= memory[k] * rate;
+        }
+      }
+      for (let i = 0; i < out.length; i++) out[i] = -f[i];
+      return solveBlocks(m, out) && out.every(Number.isFinite);
+    },
+  };
+}
 
 /**
  * Newton's method with exact Jacobian, halved steps where the residual does not fall, and no component allowed to fall by
@@ -29,57 +87,58 @@ const enough = { relative: 1e-11, absolute: 1e-16, rounding: 1e-10 };
  * @param y start, overwritten by the best found
  * @see C.T. Kelley, D.E. Keyes, SIAM J. Numer. Anal. 35 (1998) 508-523 (pseudo-transient continuation)
  */
-export function solveNewton(system: BlockSystem, y: Float64Array): NewtonResult {
+function newton(system: System, y: Float64Array, enough: Enough): NewtonResult {
   const work = workspace(system);
-  const first = iterate(system, work, y, 60);
+  const first = iterate(system, work, y, 60, enough);
   if (first.converged) return first;
   settle(system, work, y, 400);
-  const second = iterate(system, work, y, 60);
+  const second = iterate(system, work, y, 60, enough);
   return { ...second, iterations: first.iterations + second.iterations };
 }
 
 interface Workspace {
-  readonly m: BlockMatrix;
   readonly f: Float64Array;
   readonly step: Float64Array;
   readonly trial: Float64Array;
   readonly fTrial: Float64Array;
 }
 
-function workspace({ count, size }: BlockSystem): Workspace {
-  const vector = (): Float64Array => new Float64Array(count * size);
-  return { m: blockMatrix(count, size), f: vector(), step: vector(), trial: vector(), fTrial: vector() };
+function workspace({ length }: System): Workspace {
+  const vector = (): Float64Array => new Float64Array(length);
+  return { f: vector(), step: vector(), trial: vector(), fTrial: vector() };
 }
 
 /** Damped Newton steps until the step no longer matters, or none helps. */
-function iterate(system: BlockSystem, w: Workspace, y: Float64Array, limit: number): NewtonResult {
+function iterate(system: System, w: Workspace, y: Float64Array, limit: number, enough: Enough): NewtonResult {
   let norm = system.residual(y, w.f) ? size(w.f) : Number.POSITIVE_INFINITY;
   let small = 0;
   let iterations = 0;
   let converged = norm === 0;
+  let forcing = 0.03;
   while (!converged && iterations < limit && Number.isFinite(norm)) {
     iterations++;
-    if (!newtonStep(system, w, y, 0)) break;
-    const relative = relativeStep(w.step, y);
+    if (!system.step(y, w.f, 0, forcing, w.step)) break;
+    const relative = relativeStep(w.step, y, enough);
     // Near the end rounding decides whether the residual still falls: full steps are then taken as they are.
-    small = relative.largest <= enough.rounding ? small + 1 : 0;
+    small = relative.largest <= rounding ? small + 1 : 0;
     const next = small > 0 ? take(system, w, y, 1) : descend(system, w, y, norm);
     if (next === undefined) break;
+    forcing = Math.max(tightest, Math.min(forcing, 0.5 * (next / norm) ** 2));
     norm = next;
-    converged = relative.done || small >= 3;
+    converged = relative.done || small >= 3 || (enough.rms > 0 && norm <= enough.rms * Math.sqrt(y.length));
   }
   return { converged, residual: norm, worst: largestAt(w.f), iterations };
 }
 
 /** Implicit Euler steps in pseudo-time, lengthened as the residual falls (switched evolution relaxation). */
-function settle(system: BlockSystem, w: Workspace, y: Float64Array, limit: number): void {
+function settle(system: System, w: Workspace, y: Float64Array, limit: number): void {
   if (!system.residual(y, w.f)) return;
   let norm = size(w.f);
-  let least = Math.min(...Array.from(system.memory).filter((m) => m > 0)) / 10;
+  let least = system.memory.reduce((m, x) => (x > 0 ? Math.min(m, x) : m), Number.POSITIVE_INFINITY) / 10;
   if (!Number.isFinite(least)) return;
   let pace = least;
   for (let k = 0; k < limit && norm > 1e-12; k++) {
-    if (!newtonStep(system, w, y, 1 / pace)) return;
+    if (!system.step(y, w.f, 1 / pace, 1e-3, w.step)) return;
     const next = take(system, w, y, 1);
     if (next === undefined) {
       pace /= 4;
@@ -93,23 +152,8 @@ function settle(system: BlockSystem, w: Workspace, y: Float64Array, limit: numbe
   }
 }
 
-/** step = -(dF/dy - memory rate)^-1 F; `rate` in 1/s, 0 for Newton. */
-function newtonStep(system: BlockSystem, w: Workspace, y: Float64Array, rate: number): boolean {
-  const { count, size: n, memory } = system;
-  clear(w.m);
-  if (!system.jacobian(y, w.m)) return false;
-  if (rate > 0) {
-    for (let k = 0; k < count; k++) {
-      const diagonal = block(w.m, k, k);
-      for (let i = 0; i < n; i++) diagonal[i * n + i] -= memory[k] * rate;
-    }
-  }
-  for (let i = 0; i < w.step.length; i++) w.step[i] = -w.f[i];
-  return solveBlocks(w.m, w.step) && w.step.every(Number.isFinite);
-}
-
 /** Halves the step until the residual falls; undefined where it never does. */
-function descend(system: BlockSystem, w: Workspace, y: Float64Array, norm: number): number | undefined {
+function descend(system: System, w: Workspace, y: Float64Array, norm: number): number | undefined {
   for (let share = 1; share > 1e-6; share /= 2) {
     const next = take(system, w, y, share, norm * (1 - 1e-4 * share));
     if (next !== undefined) return next;
@@ -119,13 +163,13 @@ function descend(system: BlockSystem, w: Workspace, y: Float64Array, norm: numbe
 
 /** Moves y by a share of the step, kept positive; undefined (and y as it was) where the new norm exceeds `below`. */
 function take(
-  system: BlockSystem,
+  system: System,
   w: Workspace,
   y: Float64Array,
   share: number,
   below = Number.POSITIVE_INFINITY,
 ): number | undefined {
-  for (let i = 0; i < y.length; i++) w.trial[i] = Math.max(y[i] + share * w.step[i], 0.1 * y[i]);
+  for (let i = 0; i < y.length; i++) w.trial[i] = Math.max(y[i] + share * w.step[i], system.fall * y[i]);
   const norm = system.residual(w.trial, w.fTrial) ? size(w.fTrial) : Number.NaN;
   if (!(norm <= below) || !Number.isFinite(norm)) return undefined;
   y.set(w.trial);
@@ -133,7 +177,7 @@ function take(
   return norm;
 }
 
-function relativeStep(step: Float64Array, y: Float64Array): { largest: number; done: boolean } {
+function relativeStep(step: Float64Array, y: Float64Array, enough: Enough): { largest: number; done: boolean } {
   let largest = 0;
   let done = true;
   for (let i = 0; i < y.length; i++) {

@@ -2,11 +2,9 @@ import { requireCarried } from "../compile/carried.js";
 import { Part, type Plant } from "../compile/plant.js";
 import type { Chemistry } from "../model/chemistry.js";
 import type { Duty } from "../model/duty.js";
-import { bodyAt } from "./bodies.js";
 import { type Conditions, conditionsOf, type DutySettings } from "./conditions.js";
-import { conservedBy, imbalance } from "./conserved.js";
-import { groupBalance } from "./group.js";
-import { solveNewton } from "./newton.js";
+import { imbalance } from "./conserved.js";
+import { Walk } from "./walk.js";
 
 /** Concentrations everywhere in a plant that has settled. SI; species by their index in `species`. */
 export interface SteadyState {
@@ -61,104 +59,6 @@ export function steadyState(
   return summary(plant, conditions, walk);
 }
 
-/** The solution as far as it has come: filled group by group, downstream. */
-class Walk {
-  readonly y: Float64Array;
-  readonly inflow: Float64Array;
-  readonly into: readonly number[][];
-  readonly fed: Float64Array;
-  residual = 0;
-  worst: { node: number; species: number } | undefined;
-  private readonly n: number;
-
-  constructor(
-    private readonly plant: Plant,
-    private readonly conditions: Conditions,
-  ) {
-    const { nodes, feeds, to, flow } = plant;
-    const n = conditions.species.length;
-    this.n = n;
-    this.y = new Float64Array(nodes.length * n);
-    this.inflow = new Float64Array(nodes.length);
-    this.fed = new Float64Array(nodes.length * n);
-    this.into = nodes.map(() => []);
-    for (let k = 0; k < to.length; k++) {
-      if (!(flow[k] > 0)) continue;
-      this.into[to[k]].push(k);
-      this.inflow[to[k]] += flow[k];
-    }
-    feeds.forEach((feed, k) => {
-      this.inflow[feed.node] += feed.flow;
-      for (let i = 0; i < n; i++) {
-        this.fed[feed.node * n + i] += (feed.flow * conditions.feeds[k][i]) / conditions.scale[i];
-      }
-    });
-  }
-
-  /** Solves one group; everything upstream of it is known. */
-  pass(group: Int32Array): void {
-    const nodes = group.filter((node) => this.inflow[node] > 0);
-    for (const node of group) if (!(this.inflow[node] > 0)) this.y.fill(Number.NaN, node * this.n, (node + 1) * this.n);
-    if (nodes.length === 0) return;
-    const alone = nodes.length === 1 && !this.into[nodes[0]].some((k) => this.plant.from[k] === nodes[0]);
-    if (alone && this.plant.nodes[nodes[0]].part !== Part.Cell) this.passAlone(nodes[0]);
-    else this.passTogether(nodes);
-  }
-
-  /** A joint or a body that does not feed itself. */
-  private passAlone(node: number): void {
-    const { plant, n } = this;
-    const y = this.y.subarray(node * n, node * n + n);
-    y.set(this.brought(node, undefined));
-    if (bodyAt(plant, node, this.conditions.reactions)?.(y) === false) this.fail(node, 0, Number.POSITIVE_INFINITY);
-  }
-
-  private passTogether(nodes: Int32Array): void {
-    const { plant, n, inflow } = this;
-    const place = new Map(Array.from(nodes, (node, k) => [node, k]));
-    const outside = new Float64Array(nodes.length * n);
-    const inlets = Array.from(nodes, (node, k) => {
-      outside.set(this.brought(node, place), k * n);
-      return this.into[node].flatMap((link) => {
-        const from = place.get(plant.from[link]);
-        return from === undefined ? [] : [{ from, share: plant.flow[link] / inflow[node] }];
-      });
-    });
-    const balance = groupBalance(
-      plant,
-      nodes,
-      outside,
-      inlets,
-      Float64Array.from(nodes, (node) => inflow[node]),
-      this.conditions.reactions,
-    );
-    const y = balance.mixed() ?? outside.slice();
-    const result = solveNewton(balance, y);
-    nodes.forEach((node, k) => {
-      this.y.set(y.subarray(k * n, k * n + n), node * n);
-    });
-    if (!result.converged) this.fail(nodes[Math.floor(result.worst / n)], result.worst % n, result.residual);
-    else this.residual = Math.max(this.residual, result.residual);
-  }
-
-  /** Mean concentration (scaled) that reaches a node from outside the given ones, in units of its whole inflow. */
-  private brought(node: number, within: ReadonlyMap<number, number> | undefined): Float64Array {
-    const { plant, n } = this;
-    const mix = this.fed.slice(node * n, node * n + n);
-    for (const link of this.into[node]) {
-      const from = plant.from[link];
-      if (within?.has(from)) continue;
-      for (let i = 0; i < n; i++) mix[i] += plant.flow[link] * this.y[from * n + i];
-    }
-    return mix.map((x) => x / this.inflow[node]);
-  }
-
-  private fail(node: number, species: number, residual: number): void {
-    if (residual >= this.residual || !this.worst) this.worst = { node, species };
-    this.residual = Math.max(this.residual, residual);
-  }
-}
-
 /** Back to SI, with the balances of the whole plant. */
 function summary(plant: Plant, { species, feeds, scale, reactions }: Conditions, walk: Walk): SteadyState {
   const n = species.length;
@@ -185,7 +85,7 @@ function summary(plant: Plant, { species, feeds, scale, reactions }: Conditions,
   return {
     species,
     converged: walk.worst === undefined,
-    worst: walk.worst && { node: plant.nodes[walk.worst.node].name, species: species[walk.worst.species] ?? "" },
+    worst: walk.worst && { node: plant.columns.nameOf(walk.worst.node), species: species[walk.worst.species] ?? "" },
     residual: walk.residual,
     concentrations,
     feeds: inPorts,
@@ -195,27 +95,34 @@ function summary(plant: Plant, { species, feeds, scale, reactions }: Conditions,
     made,
     closure,
     conserved: imbalance(
-      conservedBy(reactions.cell.numbers, n),
+      walk.conserved,
       fed.map((x, i) => x / scale[i]),
       left.map((x, i) => x / scale[i]),
     ),
   };
 }
 
-/** Adds volume x rate of every cell, and what each tube changed between its ends. Scaled. */
-function addMade(total: Float64Array, plant: Plant, walk: Walk, cell: Conditions["reactions"]["cell"]): void {
+/** Adds volume x rate of every cell, and what each body changed between its ends. Scaled. */
+function addMade(
+  total: Float64Array,
+  { columns, flow, from }: Plant,
+  walk: Walk,
+  cell: Conditions["reactions"]["cell"],
+): void {
   const n = total.length;
+  const { part, volume, size } = columns;
+  const { start, edges } = walk.into;
   const rate = new Float64Array(n);
-  plant.nodes.forEach(({ part, volume }, node) => {
-    if (!(walk.inflow[node] > 0) || part === Part.Joint) return;
-    if (part === Part.Cell) {
+  for (let node = 0; node < size; node++) {
+    if (!(walk.inflow[node] > 0) || part[node] === Part.Joint) continue;
+    if (part[node] === Part.Cell) {
       cell.production(walk.y, node * n, rate, 0);
-      for (let i = 0; i < n; i++) total[i] += volume * rate[i];
-      return;
+      for (let i = 0; i < n; i++) total[i] += volume[node] * rate[i];
+      continue;
     }
-    for (const link of walk.into[node]) {
-      for (let i = 0; i < n; i++) total[i] -= plant.flow[link] * walk.y[plant.from[link] * n + i];
+    for (let e = start[node]; e < start[node + 1]; e++) {
+      for (let i = 0; i < n; i++) total[i] -= flow[edges[e]] * walk.y[from[edges[e]] * n + i];
     }
     for (let i = 0; i < n; i++) total[i] += walk.inflow[node] * walk.y[node * n + i] - walk.fed[node * n + i];
-  });
+  }
 }

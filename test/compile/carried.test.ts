@@ -46,11 +46,11 @@ test("what cells, tubes and joints can spell is carried, pockets without volume 
 test("more cells than an engine does in reasonable time are refused with their number, not tried", () => {
   const row = (n: number) => `  a: {kind: stirred, repeat: ${n}, backflow: 1 L/min, volume: 3 L, to: out}`;
   const circle = plantOf(vessel(row(1001)));
-  expect(uncarried(circle)).toEqual([]);
-  const [problem] = uncarried(circle, "reaction");
+  for (const work of ["tracer", "reaction"] as const) expect(uncarried(circle, work)).toEqual([]);
+  const [problem] = uncarried(circle, "laplace");
   expect(problem).toMatchObject({ code: "too-many-cells", severity: "error" });
   expect(problem.message).toBe(
-    "1001 nodes of the network feed one another; this version can solve reaction in up to 1000",
+    "1001 nodes of the network feed one another; this version can compute tracer curves by transfer functions of up to 1000",
   );
   const large = { ...circle, columns: { ...circle.columns, size: 20_001 } };
   expect(() => tracerResponse(large, { at: "in", form: "pulse" }, [0, 60])).toThrow(RefusedError);

@@ -1,0 +1,289 @@
+import { Part } from "../compile/plant.js";
+import { balanceSolver } from "../numerics/balance-solver.js";
+import { FlowBlocks } from "../numerics/flow-blocks.js";
+import { flowRows } from "../numerics/flow-rows.js";
+import type { Graph } from "../numerics/graph.js";
+import { solveSmall } from "../numerics/small-dense.js";
+import type { Conserved } from "./conserved.js";
+import type { Pass } from "./dispersion.js";
+import type { Reactions } from "./kinetics.js";
+import { type NewtonResult, type System, solveInexactNewton } from "./newton.js";
+
+/** Many nodes that feed one another, and what reaches them from elsewhere. Scaled concentrations, node by node. */
+export interface Circle {
+  /** Links among the nodes. */
+  readonly graph: Graph;
+  /** What each link brings over all that enters its end. */
+  readonly share: Float64Array;
+  /** What comes from elsewhere, in units of all that enters the node, and how much of that it is. */
+  readonly outside: Float64Array;
+  readonly excess: Float64Array;
+  /** Volume over all that enters, s. */
+  readonly tau: Float64Array;
+  readonly part: Uint8Array;
+  /** What bodies that are not mixed throughout make of their inflow. */
+  readonly bodies: ReadonlyMap<number, Pass>;
+}
+
+const mostSteps = 2000;
+/** Sweeps over the nodes in flow order, each solved by itself, before all are solved together. */
+const sweeps = 2;
+const localSteps = 2;
+
+/**
+ * The steady state of a large circle: species that follow from others are left out, since what no reaction changes only mixes;
+ * then sweeps in flow order, and Newton's method with BiCGStab behind block-wise incomplete LU. Memory linear in nodes and
+ * links.
+ * @returns all species, node by node, and how the method ended; undefined where the flows admit no mixture
+ */
+export function solveCircle(
+  circle: Circle,
+  reactions: Reactions,
+  conserved: Conserved,
+): { y: Float64Array; result: NewtonResult } | undefined {
+  const rows = flowRows(circle.graph, circle.share);
+  const mixed = mixtures(circle, reactions.cell.size);
+  if (!mixed) return undefined;
+  const state = new CircleState(circle, rows, reactions, conserved, mixed);
+  for (let k = 0; k < sweeps; k++) state.sweep();
+  const result = solveInexactNewton(state, state.x);
+  const worst = state.fullIndex(result.worst);
+  return { y: state.full(), result: { ...result, worst } };
+}
+
+/** Every species as if nothing reacted; one composition from everywhere stays what it is. */
+function mixtures({ graph, share, outside, excess }: Circle, n: number): Float64Array | undefined {
+  const count = graph.size;
+  const mixed = new Float64Array(count * n);
+  const column = new Float64Array(count);
+  let solver: ReturnType<typeof balanceSolver> | undefined;
+  for (let i = 0; i < n; i++) {
+    let [low, high] = [Number.POSITIVE_INFINITY, 0];
+    for (let k = 0; k < count; k++) {
+      if (!(excess[k] > 1e-300)) continue;
+      const c = outside[k * n + i] / excess[k];
+      low = Math.min(low, c);
+      high = Math.max(high, c);
+    }
+    if (high - low <= 1e-14 * high) {
+      for (let k = 0; k < count; k++) mixed[k * n + i] = (low + high) / 2;
+      continue;
+    }
+    for (let k = 0; k < count; k++) column[k] = outside[k * n + i];
+    solver ??= balanceSolver(graph, share, excess);
+    if (!solver?.solve(column)) return undefined;
+    for (let k = 0; k < count; k++) mixed[k * n + i] = Math.max(column[k], 0);
+  }
+  return mixed;
+}
+
+/** The balances in the species that move freely, by place in flow order. */
+class CircleState implements System {
+  readonly length: number;
+  readonly size: number;
+  readonly memory: Float64Array;
+  readonly fall = 0.01;
+  readonly x: Float64Array;
+  private readonly n: number;
+  private readonly blocks: FlowBlocks;
+  /** By place: what of each dependent species no reaction changes. */
+  private readonly fixed: Float64Array;
+  private readonly outside: Float64Array;
+  private readonly mix: Float64Array;
+  private readonly local: Float64Array;
+  private readonly all: Float64Array;
+  private readonly made: Float64Array;
+  private readonly slope: Float64Array;
+  private readonly reduced: Float64Array;
+
+  constructor(
+    private readonly circle: Circle,
+    private readonly rows: ReturnType<typeof flowRows>,
+    private readonly reactions: Reactions,
+    private readonly conserved: Conserved,
+    mixed: Float64Array,
+  ) {
+    const n = reactions.cell.size;
+    const { free, dependent, follows } = conserved;
+    const [r, d] = [free.length, dependent.length];
+    const { size: count, order } = rows;
+    this.n = n;
+    this.size = r;
+    this.length = count * r;
+    this.blocks = new FlowBlocks(rows, r);
+    this.memory = new Float64Array(count);
+    this.x = new Float64Array(count * r);
+    this.fixed = new Float64Array(count * d);
+    this.outside = new Float64Array(count * r);
+    for (let p = 0; p < count; p++) {
+      const node = order[p];
+      if (circle.part[node] === Part.Cell) this.memory[p] = circle.tau[node];
+      for (let k = 0; k < r; k++) {
+        this.x[p * r + k] = mixed[node * n + free[k]];
+        this.outside[p * r + k] = circle.outside[node * n + free[k]];
+      }
+      for (let j = 0; j < d; j++) {
+        let value = mixed[node * n + dependent[j]];
+        for (let k = 0; k < r; k++) value -= follows[j * r + k] * this.x[p * r + k];
+        this.fixed[p * d + j] = value;
+      }
+    }
+    this.mix = new Float64Array(r);
+    this.local = new Float64Array(r);
+    this.all = new Float64Array(n);
+    this.made = new Float64Array(n);
+    this.slope = new Float64Array(n * n);
+    this.reduced = new Float64Array(r * r);
+  }
+
+  /** All species, node by node as the circle has them. */
+  full(): Float64Array {
+    const { n, rows, all } = this;
+    const y = new Float64Array(rows.size * n);
+    for (let p = 0; p < rows.size; p++) {
+      this.expand(p, this.x, p * this.size);
+      for (let i = 0; i < n; i++) y[rows.order[p] * n + i] = Math.max(all[i], 0);
+    }
+    return y;
+  }
+
+  /** Place of a component of x in `full`. */
+  fullIndex(k: number): number {
+    return this.rows.order[Math.floor(k / this.size)] * this.n + this.conserved.free[k % this.size];
+  }
+
+  residual(y: Float64Array, f: Float64Array): boolean {
+    const { size: r, rows, circle, made, mix, memory, conserved } = this;
+    const { free } = conserved;
+    const special = circle.bodies.size > 0;
+    for (let p = 0; p < rows.size; p++) {
+      this.enter(p, y);
+      if (memory[p] > 0) {
+        this.expand(p, y, p * r);
+        this.reactions.cell.production(this.all, 0, made, 0);
+        for (let k = 0; k < r; k++) f[p * r + k] = mix[k] - y[p * r + k] + memory[p] * made[free[k]];
+        continue;
+      }
+      const body = special ? circle.bodies.get(rows.order[p]) : undefined;
+      if (body && !this.through(p, body)) return false;
+      for (let k = 0; k < r; k++) f[p * r + k] = mix[k] - y[p * r + k];
+    }
+    return true;
+  }
+
+  step(y: Float64Array, f: Float64Array, rate: number, relative: number, out: Float64Array): boolean {
+    const { size: r, rows, circle, memory, reduced, blocks } = this;
+    const { diagonal, through } = blocks;
+    const rr = r * r;
+    const special = circle.bodies.size > 0;
+    for (let p = 0; p < rows.size; p++) {
+      const body = special ? circle.bodies.get(rows.order[p]) : undefined;
+      for (let e = 0; e < rr; e++) reduced[e] = 0;
+      if (memory[p] > 0) {
+        this.expand(p, y, p * r);
+        this.reactions.cell.jacobian(this.all, 0, this.slope, 0);
+        this.reduce();
+        for (let e = 0; e < rr; e++) reduced[e] *= -memory[p];
+        for (let k = 0; k < r; k++) reduced[k * r + k] += 1 + memory[p] * rate - rows.own[p];
+      } else if (body) {
+        this.enter(p, y);
+        if (!this.through(p, body, this.slope)) return false;
+        this.reduce();
+        through.set(p, reduced.slice());
+        for (let e = 0; e < rr; e++) reduced[e] *= -rows.own[p];
+        for (let k = 0; k < r; k++) reduced[k * r + k] += 1;
+      } else for (let k = 0; k < r; k++) reduced[k * r + k] = 1 - rows.own[p];
+      for (let e = 0; e < rr; e++) diagonal[p * rr + e] = reduced[e];
+    }
+    if (!blocks.factor()) return false;
+    const reached = blocks.solve(f, out, relative, mostSteps);
+    // A step that is not quite what was asked may still be a good one: the residual decides.
+    return reached < 0.9 && Number.isFinite(out[0]);
+  }
+
+  /** Solves every node by itself, one after the other downstream, each with what the others are at that moment. */
+  sweep(): void {
+    const { size: r, rows, circle, mix, x, memory } = this;
+    const special = circle.bodies.size > 0;
+    for (let p = 0; p < rows.size; p++) {
+      this.enter(p, x);
+      const body = special ? circle.bodies.get(rows.order[p]) : undefined;
+      if (memory[p] > 0) this.settleCell(p);
+      else if (!body || this.through(p, body)) x.set(mix, p * r);
+    }
+  }
+
+  /** A few Newton steps for one cell: what enters from itself and others stays as it is. */
+  private settleCell(p: number): void {
+    const { size: r, x, mix, made, reduced, memory, conserved } = this;
+    const at = p * r;
+    const { local: step } = this;
+    for (let round = 0; round < localSteps; round++) {
+      this.expand(p, x, at);
+      this.reactions.cell.production(this.all, 0, made, 0);
+      this.reactions.cell.jacobian(this.all, 0, this.slope, 0);
+      this.reduce();
+      for (let e = 0; e < r * r; e++) reduced[e] *= -memory[p];
+      let largest = 0;
+      for (let k = 0; k < r; k++) {
+        reduced[k * r + k] += 1;
+        step[k] = mix[k] - x[at + k] + memory[p] * made[conserved.free[k]];
+      }
+      if (!solveSmall(reduced, 0, r, step, 0, 1)) return;
+      for (let k = 0; k < r; k++) {
+        const to = Math.max(x[at + k] + step[k], this.fall * x[at + k]);
+        largest = Math.max(largest, Math.abs(to - x[at + k]));
+        x[at + k] = to;
+      }
+      if (largest < 1e-4) return;
+    }
+  }
+
+  /** What enters at a place, into `mix`. */
+  private enter(p: number, y: Float64Array): void {
+    const { size: r, rows, mix, outside } = this;
+    const { start, column, share, own } = rows;
+    for (let k = 0; k < r; k++) mix[k] = outside[p * r + k] + own[p] * y[p * r + k];
+    for (let e = start[p]; e < start[p + 1]; e++) {
+      const from = column[e] * r;
+      for (let k = 0; k < r; k++) mix[k] += share[e] * y[from + k];
+    }
+  }
+
+  /** All species at a place, into `all`, from those that move freely at y[at ...]. */
+  private expand(p: number, y: Float64Array, at: number): void {
+    const { size: r, all, fixed, conserved } = this;
+    const { free, dependent, follows } = conserved;
+    const d = dependent.length;
+    for (let k = 0; k < r; k++) all[free[k]] = y[at + k];
+    for (let j = 0; j < d; j++) {
+      let value = fixed[p * d + j];
+      for (let k = 0; k < r; k++) value += follows[j * r + k] * y[at + k];
+      all[dependent[j]] = value;
+    }
+  }
+
+  /** Sends `mix` through a body: what leaves is then in `mix`. */
+  private through(p: number, body: Pass, slope?: Float64Array): boolean {
+    const { size: r, all, mix, conserved } = this;
+    this.expand(p, mix, 0);
+    for (let i = 0; i < this.n; i++) all[i] = Math.max(all[i], 0);
+    if (!body(all, slope)) return false;
+    for (let k = 0; k < r; k++) mix[k] = all[conserved.free[k]];
+    return true;
+  }
+
+  /** From `slope` over all species to `reduced` over those that move freely. */
+  private reduce(): void {
+    const { size: r, n, slope, reduced, conserved } = this;
+    const { free, dependent, follows } = conserved;
+    for (let i = 0; i < r; i++) {
+      const row = free[i] * n;
+      for (let k = 0; k < r; k++) {
+        let value = slope[row + free[k]];
+        for (let j = 0; j < dependent.length; j++) value += slope[row + dependent[j]] * follows[j * r + k];
+        reduced[i * r + k] = value;
+      }
+    }
+  }
+}

@@ -1,0 +1,172 @@
+import { Part, type Plant } from "../compile/plant.js";
+import { type Adjacency, adjacency } from "../numerics/graph.js";
+import { bodyAt } from "./bodies.js";
+import { type Circle, solveCircle } from "./circle.js";
+import type { Conditions } from "./conditions.js";
+import { type Conserved, conservedBy } from "./conserved.js";
+import type { Pass } from "./dispersion.js";
+import { groupBalance } from "./group.js";
+import { type NewtonResult, solveNewton } from "./newton.js";
+
+/** Up to here nodes that feed one another are solved by elimination, above it by iteration. */
+const mostEliminated = 200;
+/** Where iteration fails, elimination is tried up to here. */
+const mostTried = 2000;
+
+/** A steady state as far as it has come: filled group by group, downstream. Scaled concentrations, node by node. */
+export class Walk {
+  readonly y: Float64Array;
+  /** m3/s, by node. */
+  readonly inflow: Float64Array;
+  readonly into: Adjacency;
+  /** What feeds bring, concentration times flow. */
+  readonly fed: Float64Array;
+  readonly conserved: Conserved;
+  /** Largest imbalance so far, and where. */
+  residual = 0;
+  worst: { node: number; species: number } | undefined;
+  private readonly n: number;
+  /** Place of a node in the group at hand, -1 outside it. */
+  private readonly place: Int32Array;
+
+  constructor(
+    private readonly plant: Plant,
+    private readonly conditions: Conditions,
+  ) {
+    const { columns, feeds, to } = plant;
+    const n = conditions.species.length;
+    this.n = n;
+    this.y = new Float64Array(columns.size * n);
+    this.inflow = columns.inflow;
+    this.into = adjacency(columns.size, to);
+    this.fed = new Float64Array(columns.size * n);
+    this.conserved = conservedBy(conditions.reactions.cell.numbers, n);
+    this.place = new Int32Array(columns.size).fill(-1);
+    feeds.forEach((feed, k) => {
+      for (let i = 0; i < n; i++) {
+        this.fed[feed.node * n + i] += (feed.flow * conditions.feeds[k][i]) / conditions.scale[i];
+      }
+    });
+  }
+
+  /** Solves one group; everything upstream of it is known. */
+  pass(group: Int32Array): void {
+    const { inflow, n } = this;
+    const nodes = group.filter((node) => inflow[node] > 0);
+    for (const node of group) if (!(inflow[node] > 0)) this.y.fill(Number.NaN, node * n, (node + 1) * n);
+    if (nodes.length === 0) return;
+    const alone = nodes.length === 1 && !this.feedsItself(nodes[0]);
+    if (alone && this.plant.columns.part[nodes[0]] !== Part.Cell) this.passAlone(nodes[0]);
+    else this.passTogether(nodes);
+  }
+
+  private feedsItself(node: number): boolean {
+    const { start, edges } = this.into;
+    for (let e = start[node]; e < start[node + 1]; e++) if (this.plant.from[edges[e]] === node) return true;
+    return false;
+  }
+
+  /** A joint or a body that does not feed itself. */
+  private passAlone(node: number): void {
+    const y = this.y.subarray(node * this.n, node * this.n + this.n);
+    this.bring(node, y, 0);
+    if (bodyAt(this.plant, node, this.conditions.reactions)?.(y) === false) {
+      this.fail(node, 0, Number.POSITIVE_INFINITY);
+    }
+  }
+
+  private passTogether(nodes: Int32Array): void {
+    const { n, place } = this;
+    for (let p = 0; p < nodes.length; p++) place[nodes[p]] = p;
+    const outside = new Float64Array(nodes.length * n);
+    for (let p = 0; p < nodes.length; p++) this.bring(nodes[p], outside, p * n);
+    let solved = nodes.length > mostEliminated ? this.iterate(nodes, outside) : undefined;
+    if (!solved?.result.converged && nodes.length <= mostTried) solved = this.eliminate(nodes, outside);
+    for (let p = 0; p < nodes.length; p++) {
+      place[nodes[p]] = -1;
+      for (let i = 0; i < n; i++) this.y[nodes[p] * n + i] = solved ? solved.y[p * n + i] : Number.NaN;
+    }
+    if (!solved) this.fail(nodes[0], 0, Number.POSITIVE_INFINITY);
+    else {
+      const { converged, worst, residual } = solved.result;
+      if (!converged) this.fail(nodes[Math.floor(worst / n)], worst % n, residual);
+      else this.residual = Math.max(this.residual, residual);
+    }
+  }
+
+  private eliminate(nodes: Int32Array, outside: Float64Array): { y: Float64Array; result: NewtonResult } {
+    const { plant, inflow, place } = this;
+    const { start, edges } = this.into;
+    const inlets = Array.from(nodes, (node) =>
+      Array.from(edges.subarray(start[node], start[node + 1])).flatMap((link) => {
+        const from = place[plant.from[link]];
+        return from < 0 || !(plant.flow[link] > 0) ? [] : [{ from, share: plant.flow[link] / inflow[node] }];
+      }),
+    );
+    const inflows = Float64Array.from(nodes, (node) => inflow[node]);
+    const balance = groupBalance(plant, nodes, outside, inlets, inflows, this.conditions.reactions);
+    const y = balance.mixed() ?? outside.slice();
+    return { y, result: solveNewton(balance, y) };
+  }
+
+  private iterate(nodes: Int32Array, outside: Float64Array): ReturnType<typeof solveCircle> {
+    const { plant, inflow, place } = this;
+    const { volume, part } = plant.columns;
+    const { start, edges } = this.into;
+    let count = 0;
+    for (const node of nodes) count += start[node + 1] - start[node];
+    const [from, to] = [new Int32Array(count), new Int32Array(count)];
+    const share = new Float64Array(count);
+    const excess = new Float64Array(nodes.length);
+    const bodies = new Map<number, Pass>();
+    let k = 0;
+    for (let p = 0; p < nodes.length; p++) {
+      const node = nodes[p];
+      for (let e = start[node]; e < start[node + 1]; e++) {
+        const source = place[plant.from[edges[e]]];
+        const flow = plant.flow[edges[e]];
+        if (!(flow > 0)) continue;
+        if (source < 0) excess[p] += flow / inflow[node];
+        else {
+          from[k] = source;
+          to[k] = p;
+          share[k++] = flow / inflow[node];
+        }
+      }
+    }
+    for (const { node, flow } of plant.feeds) if (place[node] >= 0) excess[place[node]] += flow / inflow[node];
+    for (let p = 0; p < nodes.length; p++) {
+      const body = bodyAt(plant, nodes[p], this.conditions.reactions);
+      if (body) bodies.set(p, body);
+    }
+    const circle: Circle = {
+      graph: { size: nodes.length, from: from.subarray(0, k), to: to.subarray(0, k) },
+      share: share.subarray(0, k),
+      outside,
+      excess,
+      tau: Float64Array.from(nodes, (node) => volume[node] / inflow[node]),
+      part: Uint8Array.from(nodes, (node) => part[node]),
+      bodies,
+    };
+    return solveCircle(circle, this.conditions.reactions, this.conserved);
+  }
+
+  /** Writes the mean concentration that reaches a node from outside the group at hand into mix[at ...], in units of its whole inflow. */
+  private bring(node: number, mix: Float64Array, at: number): void {
+    const { plant, n, place, inflow } = this;
+    const { start, edges } = this.into;
+    for (let i = 0; i < n; i++) mix[at + i] = this.fed[node * n + i];
+    for (let e = start[node]; e < start[node + 1]; e++) {
+      const from = plant.from[edges[e]];
+      const flow = plant.flow[edges[e]];
+      if (place[from] >= 0 || !(flow > 0)) continue;
+      for (let i = 0; i < n; i++) mix[at + i] += flow * this.y[from * n + i];
+    }
+    for (let i = 0; i < n; i++) mix[at + i] /= inflow[node];
+  }
+
+  private fail(node: number, species: number, residual: number): void {
+    if (residual >= this.residual || !this.worst) this.worst = { node, species };
+    this.residual = Math.max(this.residual, residual);
+  }
+}
