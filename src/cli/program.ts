@@ -72,8 +72,13 @@ function addCheck(root: Command, { perform, inputs, io }: Stage): void {
 function addDraw(root: Command, { perform, inputs, io }: Stage): void {
   command(root, "draw <network>", "the flow diagram: bodies sized by volume, streams by flow", [
     "draw networks/demo/bypass.yaml -o bypass.svg",
+    'draw networks/demo/both.yaml --show "mean age" -o ages.png',
+    "draw networks/demo/bypass.yaml --compare networks/demo/both.yaml -o moved.svg",
   ])
     .option("-o, --output <file>", "write to F.svg, F.png or F.html; else the SVG goes to standard output")
+    .option("--show <quantity>", "as tone: mean age, life expectancy, space time, concentration of A, production of A")
+    .option("--duty <file>", "the duty that a reaction's quantity is of")
+    .option("--compare <network>", "draw this one instead, with what moved since the first")
     .option("--set <name=value>", "another value of a parameter, constant or feed.flow; repeatable", collect)
     .action((network: string, options) =>
       perform("draw", async () => (await import("./draw.js")).draw(network, options, { inputs, io })),

@@ -1,4 +1,4 @@
-import { circle, group, line, path, rectangle } from "../svg/marks.js";
+import { circle, element, group, line, path, rectangle } from "../svg/marks.js";
 import { type Point, samples, spinePath } from "../svg/spine.js";
 import { type Box, px, type Svg } from "../svg/svg.js";
 import type { Arcs } from "./blocks.js";
@@ -22,10 +22,7 @@ export function drawNetwork(sheet: FlowSheet, options: PictureOptions = {}): Svg
   const parts = [
     rectangle(layout.frame, "frame", 14),
     group("streams", inDrawingOrder(layout.ribbons).map(drawRibbon)),
-    group(
-      "bodies",
-      layout.bodies.map((p) => p.body.picture?.(p.box) ?? rectangle(p.box, "terminal")),
-    ),
+    group("bodies", layout.bodies.map(drawBody)),
     ...layout.manifolds.map((m) => line(m.x, m.top, m.x, m.bottom, "manifold")),
     ...layout.arcs.map(drawArcs),
     ...layout.marks.map(drawMark),
@@ -36,13 +33,23 @@ export function drawNetwork(sheet: FlowSheet, options: PictureOptions = {}): Svg
   return picture(sheet.title, inWords(sheet), view, options.theme ?? "auto", parts);
 }
 
+/** The kind's picture; with a tone, the same once in the paper's colour, since streams end under it, and once in the tone. */
+function drawBody({ body, box }: Layout["bodies"][number]): Svg {
+  const own = body.picture?.(box) ?? rectangle(box, "terminal");
+  if (body.tone === undefined) return own;
+  return group("base", [own]) + element("g", { class: "toned", "fill-opacity": toneStrength(body.tone) }, own);
+}
+
+/** Even the weakest tone is told from paper. */
+const toneStrength = (tone: number): number => 0.06 + 0.84 * tone;
+
 /** What the drawing shows, for those who cannot see it. */
 export function inWords(sheet: FlowSheet): string {
   const bodies = sheet.bodies
     .filter((b) => b.volume > 0)
     .map(
       (b) =>
-        `${b.label ?? b.name} ${amount(b.volume, sheet.units.volume)}${b.role === "dead" ? " (out of reach)" : ""}`,
+        `${b.label ?? b.name} ${amount(b.volume, sheet.units.volume)}${b.note ? ` (${b.note})` : ""}${b.role === "dead" ? " (out of reach)" : ""}`,
     );
   const streams = sheet.streams.map((s) => {
     const flow = amount(s.flow, sheet.units.flow);
@@ -50,7 +57,8 @@ export function inWords(sheet: FlowSheet): string {
       ? `${s.from} exchanges ${flow} with ${s.to}`
       : `${s.from} to ${s.to} ${flow} (${s.role})`;
   });
-  return `Bodies: ${bodies.join(", ") || "none"}. Streams: ${streams.join("; ") || "none"}.`;
+  const tones = sheet.tones ? `Tone of the bodies: ${sheet.tones.quantity}. ` : "";
+  return `${tones}Bodies: ${bodies.join(", ") || "none"}. Streams: ${streams.join("; ") || "none"}.`;
 }
 
 /** What runs back lies lowest, what bypasses on top. */
@@ -75,10 +83,10 @@ function drawRibbon(ribbon: Ribbon): Svg {
       chevron(heads[1], -heads[1].dx, -heads[1].dy, 5, `chevron${accent}`),
     ].join("");
   }
-  const kind = `ribbon${back ? " back" : ""}${accent}`;
+  const kind = trip.stream.gone ? "ribbon gone" : `ribbon${back ? " back" : ""}${accent}`;
   const heads = via === "gaps" ? [] : chevrons(spine, trip.width, `chevron${accent}`);
   // what runs back is pale, with a rim: still a line where it is thin
-  const rim = back ? path(d, `ribbon${accent}`, { "stroke-width": trip.width }) : "";
+  const rim = back && !trip.stream.gone ? path(d, `ribbon${accent}`, { "stroke-width": trip.width }) : "";
   const width = back ? Math.max(0, trip.width - 2) : trip.width;
   return [halo, rim, width > 0 ? path(d, kind, { "stroke-width": width }) : "", ...heads].join("");
 }
@@ -139,6 +147,22 @@ function headingOf(sheet: FlowSheet, { bounds }: Layout): readonly Caption[] {
   return [caption([...words, ...says], bounds.x, bounds.y - height - 12)];
 }
 
+const toneSteps = 10;
+const toneStep = 12; // px
+
+/** The tones from the weakest to the strongest. */
+const toneBar = (x: number, y: number): readonly Svg[] =>
+  Array.from({ length: toneSteps }, (_, k) =>
+    element("rect", {
+      class: "tone",
+      "fill-opacity": toneStrength(k / (toneSteps - 1)),
+      x: x + k * toneStep,
+      y,
+      width: toneStep,
+      height: 16,
+    }),
+  );
+
 /** The scales: a square of a round volume and a ribbon of a round flow. */
 function legendOf(sheet: FlowSheet, { bounds, scale }: Layout): { marks: Svg; captions: readonly Caption[]; box: Box } {
   const top = bounds.y + bounds.height + 14;
@@ -159,6 +183,14 @@ function legendOf(sheet: FlowSheet, { bounds, scale }: Layout): { marks: Svg; ca
     const width = flow * scale.width;
     marks.push(rectangle({ x, y: top + 14 - width / 2, width: 30, height: width }, "scale"));
     captions.push(caption([{ words: `width of ${amount(flow, sheet.units.flow)}`, style: "quiet" }], x + 37, top + 7));
+  }
+  if (sheet.tones) {
+    if (captions.length > 0) x += 37 + captions[captions.length - 1].box.width + 26;
+    const { quantity, low, high } = sheet.tones;
+    const first = caption([{ words: `${quantity} ${low}`, style: "quiet" }], x, top + 7);
+    const bar = first.box.x + first.box.width + 7;
+    marks.push(...toneBar(bar, top + 6));
+    captions.push(first, caption([{ words: high, style: "quiet" }], bar + toneSteps * toneStep + 7, top + 7));
   }
   return {
     marks: marks.join(""),

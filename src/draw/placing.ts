@@ -98,7 +98,7 @@ function blockOf(
   }
   if (body.role !== "feed" && body.role !== "outlet") return bodyBlock(body, sheet, scale, ports.stack, hanging);
   const flow = sheet.streams
-    .filter((s) => s.role !== "exchange" && (body.role === "feed" ? s.from : s.to) === name)
+    .filter((s) => s.role !== "exchange" && !s.gone && (body.role === "feed" ? s.from : s.to) === name)
     .reduce((sum, s) => sum + s.flow, 0);
   return terminalBlock(body, amount(flow, sheet.units.flow), ports.stack);
 }

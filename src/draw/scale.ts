@@ -61,5 +61,15 @@ export function typeset(written: string): string {
       /\b((?:[kcmdµu]?m)|ft|in|yd)([23])\b/g,
       (_, unit: string, power: string) => unit + (power === "2" ? "²" : "³"),
     )
-    .replace(/(\d) (?=[A-Za-zµ°%])/g, "$1\u2009");
+    .replace(
+      /(\d)e([+-]?)(\d+)/g,
+      (_, digit: string, sign: string, power: string) => `${digit}×10${raised(sign + power)}`,
+    )
+    .replace(/([\d\u2070-\u2079⁰¹²³]) (?=[A-Za-zµ°%])/g, "$1\u2009");
 }
+
+const raised = (power: string): string => [...power.replace("+", "")].map((c) => superscripts[c] ?? c).join("");
+
+const superscripts: Readonly<Record<string, string>> = Object.fromEntries(
+  [..."0123456789-\u2212"].map((c, k) => [c, [..."⁰¹²³⁴⁵⁶⁷⁸⁹⁻⁻"][k]]),
+);

@@ -8,6 +8,8 @@ export interface FlowSheet {
   readonly bodies: readonly SheetBody[];
   readonly streams: readonly SheetStream[];
   readonly units: { readonly volume: SheetUnit; readonly flow: SheetUnit };
+  /** What the tones of the bodies tell, where they have any: "mean age", and the values at the two ends of the scale in words. */
+  readonly tones?: { readonly quantity: string; readonly low: string; readonly high: string };
 }
 
 /** A unit to print in: SI value = number * factor (m3 or m3/s). */
@@ -35,6 +37,10 @@ export interface SheetBody {
   readonly marks?: readonly ("injection" | "probe")[];
   /** Should the reader look here? */
   readonly accent?: boolean;
+  /** How many bodies it stands for, where it is drawn for several. */
+  readonly stands?: number;
+  /** How strong its tone is, 0 to 1, in place of the kind's own tint. */
+  readonly tone?: number;
 }
 
 export type StreamRole = "forward" | "recycle" | "bypass" | "exchange";
@@ -48,4 +54,6 @@ export interface SheetStream {
   /** As it shall be read: "1 L/min (10 %)". */
   readonly label: string;
   readonly accent?: boolean;
+  /** No longer there, in a comparison. */
+  readonly gone?: boolean;
 }

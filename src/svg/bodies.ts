@@ -104,6 +104,24 @@ export function junctionBody(box: Box): Svg {
   return group("body junction", [circle(middle.x, middle.y, Math.min(box.width, box.height) / 2, "dot")]);
 }
 
+/** Many bodies drawn as one: a box divided like bricks, each row at its own joints, about as many as there are bodies up to 24. */
+export function severalBody(box: Box, count: number): Svg {
+  const rows = Math.max(2, Math.min(4, Math.round(Math.sqrt(count / 1.5))));
+  const across = Math.max(1, Math.min(6, Math.round(count / rows)));
+  const height = box.height / rows;
+  const step = box.width / across;
+  const parts = [rectangle(box, "liquid", corner(box))];
+  for (let k = 0; k < rows; k++) {
+    const y = box.y + k * height;
+    if (k > 0) parts.push(line(box.x, y, box.x + box.width, y, "wall thin"));
+    for (let j = 1; j <= across; j++) {
+      const x = box.x + (j - (k % 2) / 2) * step;
+      if (x > box.x + 2 && x < box.x + box.width - 2) parts.push(line(x, y, x, y + height, "wall thin"));
+    }
+  }
+  return group("body several", parts);
+}
+
 const capsule = (box: Box): number => Math.min(box.width, box.height) / 2;
 
 const corner = (box: Box): number => Math.min(10, Math.min(box.width, box.height) / 5);

@@ -43,6 +43,36 @@ describe("draw -o F.png", () => {
   });
 });
 
+describe("draw --show and --compare", () => {
+  test("shows what it is asked for, and says what there is", async () => {
+    const age = await backmix(["draw", vessel, "--show", "mean age"]);
+    expect(age.status).toBe(0);
+    expect(age.out).toContain("mean age");
+    const made = await backmix([
+      "draw",
+      vessel,
+      "--show",
+      "production of ester",
+      "--duty",
+      "networks/demo/normal.yaml",
+    ]);
+    expect(made.out).toContain("consumption of ester");
+    const wrong = await backmix(["draw", vessel, "--show", "mean agee"]);
+    expect(wrong.status).toBe(2);
+    expect(wrong.err).toContain("did you mean 'mean age'?");
+    const alone = await backmix(["draw", vessel, "--show", "production of ester"]);
+    expect(alone.err).toContain("--duty FILE");
+  });
+
+  test("compares with another network, whose faults count like those of the first", async () => {
+    const { out } = await backmix(["draw", "networks/demo/bypass.yaml", "--compare", vessel]);
+    expect(out).toContain("R-12 with a bypass and dead water → R-12 with a bypass and a quiet corner");
+    const { status, err } = await backmix(["draw", vessel, "--compare", "nowhere.yaml"]);
+    expect(status).toBe(1);
+    expect(err).toContain("nowhere.yaml");
+  });
+});
+
 /** Size and grey values of a PNG with eight bits per channel, not interlaced (PNG specification, W3C 2003). */
 function decode(png: Uint8Array): { width: number; height: number; pixels: Uint8Array } {
   const bytes = Buffer.from(png);

@@ -1,4 +1,5 @@
 import type { Plant } from "../../compile/plant.js";
+import { aggregated, outermost } from "../../draw/aggregate.js";
 import { plotCurves } from "../../draw/curves.js";
 import { flowSheet } from "../../draw/flow-sheet.js";
 import { drawNetwork } from "../../draw/network.js";
@@ -17,7 +18,7 @@ export function networkFigures(plant: Plant): Figure[] {
 }
 
 export function diagram(plant: Plant, name: string): Figure {
-  const sheet = flowSheet(plant);
+  const sheet = aggregated(flowSheet(plant), outermost(plant.network));
   return {
     name,
     drawing: drawNetwork(sheet),

@@ -1,3 +1,4 @@
+import { aggregated, outermost } from "../../draw/aggregate.js";
 import { plotCurves } from "../../draw/curves.js";
 import { plotFit } from "../../draw/fit-curve.js";
 import { flowSheet } from "../../draw/flow-sheet.js";
@@ -36,7 +37,7 @@ export function vesselFigure(ranked: Ranked, trials: readonly Trial[]): Figure |
   });
   return {
     name: "vessel",
-    drawing: drawNetwork(sheet, { untitled: true }),
+    drawing: drawNetwork(aggregated(sheet, outermost(plant.network)), { untitled: true }),
     data: { table: sheetTable(sheet) },
     caption: `The vessel as fitted by '${rival.network.title}', at the flow of the file. Area is volume, width is flow; behind a volume what the fit leaves possible (95 %).`,
   };
