@@ -68,6 +68,7 @@ async function validatorSource(schemas, shapes) {
   const { default: standaloneCode } = await import("ajv/dist/standalone/index.js");
   const ajv = new Ajv2020({
     allErrors: true,
+    messages: false, // the catalogue words them
     allowUnionTypes: true,
     strictRequired: false,
     strictTypes: false,

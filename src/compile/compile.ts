@@ -5,8 +5,9 @@ import { backEdges } from "../numerics/graph.js";
 import type { Problem } from "../problems/problem.js";
 import { collector } from "../problems/report.js";
 import { formatQuantity } from "../units/format.js";
+import { affectedBy } from "./affected.js";
 import { evaluateNames } from "./evaluate.js";
-import { balanceFlows, type FlowPlan, type Flows, flowPlan } from "./flows.js";
+import { balanceFlows, type FlowPlan, type Flows, flowPlan, solveFlows } from "./flows.js";
 import type { Plant, PlantStream, Settings } from "./plant.js";
 import { valuesInRange, volumesOf } from "./ranges.js";
 import type { Say } from "./say.js";
@@ -50,10 +51,25 @@ export function compiler(network: Network): {
   };
 }
 
-/** Tells of many settings what makes a network impossible there; nothing where `compile` would give a plant. */
+/**
+ * Tells of many settings what makes a network impossible there that is possible at its own values; nothing where `compile`
+ * would give a plant. Only what the settings touch is looked at.
+ */
 export function problemFinder(network: Network): (settings: Settings) => Problem[] {
   const plan = flowPlan(network);
-  return (settings) => balance(network, settings, plan).problems;
+  const affected = affectedBy(network);
+  const zoned = network.compartments.some((c) => c.zones);
+  const say = sayer(network);
+  return (settings) => {
+    const { compartments, flows } = affected(Object.keys(settings));
+    const { report, problems } = collector();
+    const env = evaluateNames(network, settings);
+    const touched = { ...network, compartments };
+    volumesOf(touched, env, report, say);
+    if (flows) (zoned ? balanceFlows : solveFlows)(network, env, report, say, plan);
+    valuesInRange(touched, env, report, say);
+    return problems;
+  };
 }
 
 /**

@@ -17,7 +17,7 @@ export class FlowSlopes {
     private readonly env: Float64Array,
     private readonly values: ValueSlopes,
   ) {
-    this.branches = branchesOf(network, plan, env);
+    this.branches = branchesOf(plan, env);
     const supply = new Float64Array(plan.places.length);
     network.feeds.forEach((f, i) => {
       supply[i] = env[f.flowSlot];

@@ -30,7 +30,11 @@ export interface FlowPlan {
   /** Groups of places in flow order. */
   readonly groups: readonly Int32Array[];
   readonly into: Adjacency;
+  /** Where values say how outflow divides: the place, and the number of its first stream. All else sends all that it has. */
+  readonly dividing: readonly { readonly node: Dividing; readonly first: number }[];
 }
+
+type Dividing = Pick<Network["compartments"][number], "name" | "streams" | "toAt">;
 
 export function flowPlan(network: Network): FlowPlan {
   const places: Place[] = [...network.feeds, ...network.compartments, ...network.outlets];
@@ -40,7 +44,14 @@ export function flowPlan(network: Network): FlowPlan {
   const from = Int32Array.from(nodes.flatMap((n, i) => n.streams.map(() => i)));
   const to = Int32Array.from(streams, (s) => index.get(s.to) as number);
   const size = places.length;
-  return { places, streams, from, to, groups: stronglyConnected({ size, from, to }), into: adjacency(size, to) };
+  let first = 0;
+  const dividing = nodes.flatMap((node) => {
+    const at = first;
+    first += node.streams.length;
+    return node.streams.some((s) => "value" in s.split) ? [{ node, first: at }] : [];
+  });
+  const groups = stronglyConnected({ size, from, to });
+  return { places, streams, from, to, groups, into: adjacency(size, to), dividing };
 }
 
 /** Every stream as a linear function of its source's through-flow: share * through + fixed. */
@@ -61,9 +72,28 @@ export function balanceFlows(
   say: Say,
   plan: FlowPlan = flowPlan(network),
 ): Flows | undefined {
-  const { places, from, to } = plan;
+  const solved = solveFlows(network, env, report, say, plan);
+  if (!solved) return undefined;
+  const { from, to } = plan;
+  const streams = plan.streams.map(
+    (stream, k): SolvedStream => ({ from: from[k], to: to[k], stream, flow: solved.flow[k] }),
+  );
+  const zoned = zoneFlows(network, streams, report, say);
+  return zoned && { through: solved.through, streams, zoned };
+}
+
+/** Through-flow by place and flow by stream, m3/s; undefined, and reported, where they cannot be found. */
+export function solveFlows(
+  network: Network,
+  env: Float64Array,
+  report: Report,
+  say: Say,
+  plan: FlowPlan,
+): { through: Float64Array; flow: Float64Array } | undefined {
+  const { places, from } = plan;
   const supply = new Float64Array(places.length);
-  let good = splitsPossible(network, env, report, say);
+  const closed = isClosed(network);
+  let good = splitsPossible(plan, closed, env, report, say);
   network.feeds.forEach((f, i) => {
     supply[i] = env[f.flowSlot];
     if (supply[i] > 0 && Number.isFinite(supply[i])) return;
@@ -75,26 +105,23 @@ export function balanceFlows(
     }
   });
   if (!good) return undefined;
-  const { share, fixed } = branchesOf(network, plan, env);
+  const { share, fixed } = branchesOf(plan, env);
   const solved = solveThrough(plan, { share, fixed }, supply);
   if ("stuck" in solved) {
     const group = [...solved.stuck].sort((a, b) => a - b).map((i) => places[i]);
-    const names = group.map((p) => p.name);
-    report(isClosed(network) ? "closed-flow-open" : "loop-unbounded", group[0].at, { names });
+    report(closed ? "closed-flow-open" : "loop-unbounded", group[0].at, { names: group.map((p) => p.name) });
     return undefined;
   }
   const { through } = solved;
-  if (!fixedFlowsBalance(network, env, through, report, say)) return undefined;
-  const streams = plan.streams.map((stream, k): SolvedStream => {
+  if (closed && !fixedFlowsBalance(network, env, through, report, say)) return undefined;
+  const flow = new Float64Array(from.length);
+  for (let k = 0; k < flow.length; k++) {
     // A rest that is zero but for rounding is zero.
     const part = share[k] * through[from[k]];
-    const flow = part + fixed[k];
-    const small = 1e-12 * (Math.abs(part) + Math.abs(fixed[k]));
-    return { from: from[k], to: to[k], stream, flow: Math.abs(flow) <= small ? 0 : flow };
-  });
-  if (!allPositive(streams, through, places, report, say)) return undefined;
-  const zoned = zoneFlows(network, streams, report, say);
-  return zoned && { through, streams, zoned };
+    const q = part + fixed[k];
+    flow[k] = Math.abs(q) <= 1e-12 * (Math.abs(part) + Math.abs(fixed[k])) ? 0 : q;
+  }
+  return flow.every((q) => q >= 0) || allPositive(plan, flow, through, report, say) ? { through, flow } : undefined;
 }
 
 /** Where a place of a closed vessel sends fixed flows alone, just that must arrive. */
@@ -125,13 +152,14 @@ interface Place {
 }
 
 /** Shares and fixed flows are numbers, none below zero, and shares neither send more than there is nor leave some unsent. */
-function splitsPossible(network: Network, env: Float64Array, report: Report, say: Say): boolean {
+function splitsPossible({ dividing }: FlowPlan, closed: boolean, env: Float64Array, report: Report, say: Say): boolean {
   let good = true;
   const refuse: Report = (...problem) => {
     good = false;
     report(...problem);
   };
-  for (const { name, streams, toAt } of [...network.feeds, ...network.compartments]) {
+  for (const { node } of dividing) {
+    const { name, streams, toAt } = node;
     let total = 0;
     for (const { split, to } of streams) {
       if (!("value" in split)) continue;
@@ -149,7 +177,7 @@ function splitsPossible(network: Network, env: Float64Array, report: Report, say
     }
     const open = streams.some(({ split }) => split.is === "rest" || split.is === "all") || streams.length === 0;
     // In a closed vessel fixed flows may be all; whether they balance shows when they are solved.
-    if (isClosed(network) && streams.every(({ split }) => split.is === "flow")) continue;
+    if (closed && streams.every(({ split }) => split.is === "flow")) continue;
     if (good && (open ? total > 1 + 1e-9 : Math.abs(total - 1) > 1e-9)) {
       refuse("share-sum", toAt, { name, total: say(total, dimensions.ratio), rest: open });
     }
@@ -157,28 +185,26 @@ function splitsPossible(network: Network, env: Float64Array, report: Report, say
   return good;
 }
 
-export function branchesOf(network: Network, plan: FlowPlan, env: Float64Array): Branches {
-  const share = new Float64Array(plan.streams.length);
-  const fixed = new Float64Array(plan.streams.length);
-  let first = 0;
-  for (const { streams } of [...network.feeds, ...network.compartments]) {
+export function branchesOf({ streams, dividing }: FlowPlan, env: Float64Array): Branches {
+  const share = new Float64Array(streams.length).fill(1);
+  const fixed = new Float64Array(streams.length);
+  for (const { node, first } of dividing) {
     let [shares, flows, rest] = [0, 0, -1];
-    streams.forEach(({ split }, n) => {
+    node.streams.forEach(({ split }, n) => {
       const k = first + n;
       if (split.is === "share") {
         share[k] = split.value.of(env);
         shares += share[k];
       } else if (split.is === "flow") {
+        share[k] = 0;
         fixed[k] = split.value.of(env);
         flows += fixed[k];
-      } else if (split.is === "all") share[k] = 1;
-      else rest = k;
+      } else if (split.is === "rest") rest = k;
     });
     if (rest >= 0) {
       share[rest] = Math.abs(1 - shares) < 1e-15 ? 0 : 1 - shares;
       fixed[rest] = -flows;
     }
-    first += streams.length;
   }
   return { share, fixed };
 }
@@ -193,6 +219,17 @@ export function solveThrough(
   const local = new Int32Array(places.length).fill(-1);
   for (const group of groups) {
     const n = group.length;
+    if (n === 1 && !returnsTo(group[0], from, into)) {
+      const node = group[0];
+      let sum = supply[node];
+      for (let e = into.start[node]; e < into.start[node + 1]; e++) {
+        const k = into.edges[e];
+        sum += share[k] * through[from[k]];
+        sum += fixed[k];
+      }
+      through[node] = sum;
+      continue;
+    }
     const matrix = new Float64Array(n * n);
     const rhs = new Float64Array(n);
     for (let i = 0; i < n; i++) local[group[i]] = i;
@@ -222,26 +259,33 @@ export function solveThrough(
   return { through };
 }
 
+/** Does a stream lead from a place back to itself? */
+function returnsTo(node: number, from: Int32Array, { start, edges }: Adjacency): boolean {
+  for (let e = start[node]; e < start[node + 1]; e++) if (from[edges[e]] === node) return true;
+  return false;
+}
+
 /** No `rest` is below zero. Where less than nothing arrives, the fault lies upstream and is told there. */
 function allPositive(
-  streams: readonly SolvedStream[],
+  { places, from, streams }: FlowPlan,
+  flow: Float64Array,
   through: Float64Array,
-  places: readonly Place[],
   report: Report,
   say: Say,
 ): boolean {
-  const negative = streams.filter((s) => !(s.flow >= 0));
-  const first = negative.filter((s) => through[s.from] >= 0);
-  for (const { from, stream } of first.length > 0 ? first : negative.slice(0, 1)) {
-    const others = streams.filter((o) => o.from === from && o.stream !== stream);
-    const split = others.find((o) => o.stream.split.is === "flow")?.stream.split;
-    report("fixed-flow-too-large", split && "value" in split ? split.value.at : stream.at, {
-      name: places[from].name,
+  const all = Array.from(flow.keys());
+  const negative = all.filter((k) => !(flow[k] >= 0));
+  const first = negative.filter((k) => through[from[k]] >= 0);
+  for (const k of first.length > 0 ? first : negative.slice(0, 1)) {
+    const others = all.filter((o) => from[o] === from[k] && o !== k);
+    const split = others.map((o) => streams[o].split).find(({ is }) => is === "flow");
+    report("fixed-flow-too-large", split && "value" in split ? split.value.at : streams[k].at, {
+      name: places[from[k]].name,
       fixed: say(
-        others.reduce((sum, o) => sum + o.flow, 0),
+        others.reduce((sum, o) => sum + flow[o], 0),
         dimensions.flow,
       ),
-      arrives: say(through[from], dimensions.flow),
+      arrives: say(through[from[k]], dimensions.flow),
       several: others.length > 1,
     });
   }

@@ -9,12 +9,16 @@ const oneZone = 100;
 
 /** Warns of exchanges so fast that the two tanks are one. Where no stream passes either, the feed of the vessel is the measure. */
 export function fastExchanges(plant: Plant, report: Report): void {
+  if (plant.network.compartments.every((c) => c.exchanges.length === 0)) return;
+  const through = new Map<string, number>();
+  for (const s of plant.streams) if (s.role !== "exchange") through.set(s.to, (through.get(s.to) ?? 0) + s.flow);
+  const into = (name: string): number => through.get(name) ?? broughtTo(plant, name);
   const feed = plant.feeds.reduce((sum, f) => sum + f.flow, 0);
   const unit = plant.network.units.unitFor(dimensions.flow);
   for (const c of plant.network.compartments) {
     for (const e of c.exchanges) {
       const flow = e.flow.of(plant.env);
-      const passing = Math.max(broughtTo(plant, c.name), broughtTo(plant, e.partner)) || feed;
+      const passing = Math.max(into(c.name), into(e.partner)) || feed;
       if (passing === 0 || flow <= oneZone * passing) continue; // a closed vessel has no measure for it
       report("exchange-fast", e.flow.at, {
         name: c.name,

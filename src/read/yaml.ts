@@ -4,6 +4,7 @@ import type { Source } from "../text/source.js";
 import { reportGlued } from "./colons.js";
 import { deepest, growTree } from "./grow.js";
 import { isText } from "./is-text.js";
+import { plainYaml } from "./plain-yaml.js";
 import { reportSyntax } from "./syntax.js";
 import { mendTraps } from "./traps.js";
 import type { MapNode } from "./tree.js";
@@ -27,10 +28,12 @@ export function readYaml(source: Source, report: Report): MapNode | undefined {
     report("not-text", { source: { ...source, text: "" }, from: 0, to: 0 }, { file: source.path });
     return undefined;
   }
-  if (partsIn(source.text) > mostParts) {
+  if (source.text.length > mostParts && partsIn(source.text) > mostParts) {
     report("too-many-parts", start, { limit: mostParts });
     return undefined;
   }
+  const quick = plainYaml(source);
+  if (quick) return mendTraps(quick, report);
   const document = parse(source);
   if (document === "too deep") {
     report("too-deep", start, { limit: deepest });
