@@ -117,6 +117,8 @@ const shownBy: Record<keyof typeof runEntries, string> = {
   "cannot-tell": "fit/findings.test.ts",
   "strongly-correlated": "fit/run-codes.test.ts",
   "wide-interval": "fit/run-codes.test.ts",
+  "interval-not-linear": "fit/p1.test.ts",
+  "interval-by-profile": "fit/p1.test.ts",
   "interval-cut": "fit/run-codes.test.ts",
   "residuals-correlated": "fit/uncertainty.test.ts",
   "several-optima": "fit/run-codes.test.ts",

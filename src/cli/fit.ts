@@ -23,6 +23,7 @@ export interface FitOptions {
   readonly seed: number;
   readonly strict?: true;
   readonly write?: true;
+  readonly profile?: true;
 }
 
 /** `fit NETWORK --trial FILE…`: the parameters of a network from all trials at once. */
@@ -39,6 +40,7 @@ export function fitCommand(file: string, options: FitOptions, { inputs, io }: Co
     ...(options.free ? { free: options.free } : {}),
     ...(options.starts === undefined ? {} : { starts: options.starts }),
     seed: options.seed,
+    profile: options.profile === true,
     cancelled: io.cancelled,
     progress: ({ start, starts, best, evaluations }) =>
       progress.say(`fit: start ${start} of ${starts}, best ${formatNumber(best)}, ${evaluations} evaluations`),

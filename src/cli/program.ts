@@ -132,8 +132,12 @@ function addFit(root: Command, { perform, inputs, io }: Stage): void {
     .option("--starts <n>", "starts besides the file's own values", whole(0))
     .option("--seed <n>", "seed of the starts", whole(0), 1)
     .option("--strict", "exit 1 when a parameter ends at a bound or cannot be told")
+    .option(
+      "--profile",
+      "profile every parameter: intervals that hold where the curve bends or a front crosses a sample",
+    )
     .option("--write", "put the values back into the network's file, comments kept");
-  later(fit, "--profile", "--bootstrap <n>", "--resume <file>").action((network: string, options, self: Command) =>
+  later(fit, "--bootstrap <n>", "--resume <file>").action((network: string, options, self: Command) =>
     perform("fit", async () => {
       refuseLater(self);
       return (await import("./fit.js")).fitCommand(network, options, { inputs, io });

@@ -18,6 +18,14 @@ export interface Estimates {
   readonly unknowns: readonly string[];
   /** Intervals before they were cut at bounds, SI. */
   readonly uncut: readonly (readonly [number, number] | undefined)[];
+  /** The t-quantile of the intervals. */
+  readonly t: number;
+  /** Variance of one weighted residual. */
+  readonly variance: number;
+  /** By coordinate: how all unknowns of the search move with it, the others at their best, and its standard error; u. */
+  readonly ways: readonly { readonly along: Float64Array; readonly error: number }[];
+  /** Standard deviation that uncertain constants bring to each parameter, SI. */
+  readonly carried: readonly number[];
 }
 
 /** Standard errors, intervals and correlations at the end of a fit. */
@@ -90,6 +98,13 @@ export function estimatesOf({ problem, x, at }: Settled): Estimates {
     plain,
     unknowns: [...setup.coordinates.map((c) => c.name), ...names],
     uncut,
+    t,
+    variance,
+    ways: setup.coordinates.map((_, j) => ({
+      along: Float64Array.from(x, (_, i) => whole.inverse[i * whole.n + j] / whole.inverse[j * whole.n + j]),
+      error: Math.sqrt(variance * whole.inverse[j * whole.n + j]),
+    })),
+    carried: slopes.map((slope, j) => Math.sqrt(constants.reduce((sum, d) => sum + d[j] * d[j], 0)) * Math.abs(slope)),
   };
 }
 

@@ -3,7 +3,8 @@ import { fQuantile } from "../numerics/distributions.js";
 import { type Code, type DataOf, problem } from "../problems/report.js";
 import { formatQuantity } from "../units/format.js";
 import type { Estimates } from "./estimates.js";
-import type { FitFinding, FittedReading, FoundOptimum } from "./result.js";
+import type { NotLinear } from "./profiles.js";
+import type { FitFinding, FittedProfile, FittedReading, FoundOptimum } from "./result.js";
 import type { Setup } from "./setup.js";
 
 /** What the findings look at. */
@@ -15,6 +16,9 @@ export interface Ended {
   readonly optima: readonly FoundOptimum[];
   readonly converged: boolean;
   readonly cancelled: boolean;
+  readonly profiles: readonly FittedProfile[];
+  /** Parameters whose linear interval does not hold, where there are no profiles. */
+  readonly notLinear: readonly NotLinear[];
 }
 
 /** Everything that a reader of the fit must know, the gravest first. */
@@ -23,6 +27,7 @@ export function findingsOf(ended: Ended): FitFinding[] {
     ...howItEnded(ended),
     ...cannotTell(ended),
     ...bounds(ended),
+    ...crooked(ended),
     ...correlated(ended),
     ...residuals(ended),
     ...unequal(ended),
@@ -76,6 +81,34 @@ function bounds(e: Ended): FitFinding[] {
     if (low && high) return [say(e, "wide-interval", { name }, [name], intervals)];
     return low || high ? [say(e, "interval-cut", { name, side: low ? "lower" : "upper" }, [name], intervals)] : [];
   });
+}
+
+/** Intervals that linear theory gets wrong by a third or more on a side. */
+function crooked(e: Ended): FitFinding[] {
+  const guessed = e.notLinear.map(({ name, times }) =>
+    say(e, "interval-not-linear", { name, times }, [name], { times }),
+  );
+  const profiled = e.profiles.flatMap(({ name, unit, interval95: [low, high], ends }) => {
+    const p = e.estimates.parameters.find((q) => q.name === name);
+    if (!p?.interval95) return [];
+    const sides = [low, high].map((end, k) => {
+      const linear = Math.abs((p.interval95 as readonly [number, number])[k] - p.value);
+      return end === undefined ? Number.POSITIVE_INFINITY : Math.abs(end - p.value) / linear;
+    });
+    if (sides.every((s) => s > 0.75 && s < 1.33)) return [];
+    const text = (si: number | undefined): string => (si === undefined ? "no end" : formatQuantity(si, unit, 4));
+    const [from, to] = p.interval95;
+    const data = {
+      name,
+      from: text(low),
+      to: text(high),
+      linear: [text(from), text(to)] as const,
+      step: ends.includes("step"),
+    };
+    const evidence = { from: low ?? "no end", to: high ?? "no end", linearFrom: from, linearTo: to };
+    return [say(e, "interval-by-profile", data, [name], evidence)];
+  });
+  return [...guessed, ...profiled];
 }
 
 function correlated(e: Ended): FitFinding[] {

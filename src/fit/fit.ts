@@ -15,6 +15,7 @@ import { networkModel } from "./network-model.js";
 import { countOf, thinned } from "./observations.js";
 import { prepare } from "./prepare.js";
 import { type Problem as LinearProblem, problemWith } from "./problem.js";
+import { notLinear, profilesOf } from "./profiles.js";
 import type { Fit, FittedParameter, FittedReading, FoundOptimum } from "./result.js";
 import { descend, fully, type SearchResult, searchFrom, type Watch } from "./search.js";
 import { type Settled, settle } from "./settle.js";
@@ -32,6 +33,8 @@ export interface FitOptions {
   /** Compare a network without parameters as it stands (a rival in a study) instead of refusing it. */
   readonly asItStands?: boolean;
   /** Asked often; true ends the fit with the best so far, marked. */
+  /** Profiles of all parameters too: about as much again as the fit. */
+  readonly profile?: boolean;
   readonly cancelled?: () => boolean;
   readonly progress?: Watch["progress"];
 }
@@ -85,7 +88,7 @@ export function fitWith(
     report("no-start", network.at, { tried: setup.cost.evaluations });
     return { fit: undefined, problems };
   }
-  return { fit: resultOf(setup, settled, found), problems };
+  return { fit: resultOf(setup, settled, found, options.profile === true, watch), problems };
 }
 
 /** A fit to nothing but constants would be numbers made of nothing. One reading that moves is enough. */
@@ -119,7 +122,7 @@ function alone(problem: LinearProblem, x: Float64Array): SearchResult {
   return { best, optima: best ? [best] : [], cancelled: false };
 }
 
-function resultOf(setup: Setup, settled: Settled, found: SearchResult): Fit {
+function resultOf(setup: Setup, settled: Settled, found: SearchResult, profile: boolean, watch: Watch): Fit {
   const { x, at, weights, problem } = settled;
   const estimates = estimatesOf(settled);
   const unit = weights.inUnit ? setup.blocks[0].unit : undefined;
@@ -131,6 +134,9 @@ function resultOf(setup: Setup, settled: Settled, found: SearchResult): Fit {
   const converged = settled.converged && !found.cancelled;
   const n = setup.coordinates.length;
   const readings = readingsOf(setup, settled);
+  const told = converged && !watch.cancelled();
+  const profiles = profile && told ? profilesOf(settled, estimates, watch) : undefined;
+  const notHolding = told && !profiles ? notLinear(settled, estimates, watch) : [];
   return {
     parameters: found.cancelled ? estimates.parameters.map(unsure) : estimates.parameters,
     values: valuesAt(setup, x),
@@ -149,7 +155,17 @@ function resultOf(setup: Setup, settled: Settled, found: SearchResult): Fit {
     optima,
     readings,
     held: setup.held.map((h, j) => ({ says: h.says, deviations: x[n + j] ?? 0 })),
-    findings: findingsOf({ setup, estimates, readings, optima, converged, cancelled: found.cancelled }),
+    ...(profiles ? { profiles } : {}),
+    findings: findingsOf({
+      setup,
+      estimates,
+      readings,
+      optima,
+      converged,
+      cancelled: found.cancelled,
+      profiles: profiles ?? [],
+      notLinear: notHolding,
+    }),
   };
 }
 

@@ -1,6 +1,7 @@
 import type { Settings } from "../compile/plant.js";
 import type { Code } from "../problems/report.js";
 import type { Unit } from "../units/unit.js";
+import type { ProfileEnd } from "./profile.js";
 
 /** What a fit found out. All numbers SI unless said; `unit` is what people see. */
 export interface Fit {
@@ -31,7 +32,23 @@ export interface Fit {
   readonly readings: readonly FittedReading[];
   /** Where the fit moved the declared facts, in their standard deviations. */
   readonly held: readonly { readonly says: string; readonly deviations: number }[];
+  /** Of every parameter, where they were asked for. */
+  readonly profiles?: readonly FittedProfile[];
   readonly findings: readonly FitFinding[];
+}
+
+/** The sum of squares along one parameter, the others at their best. */
+export interface FittedProfile {
+  readonly name: string;
+  readonly unit: Unit;
+  /** SI, ascending. */
+  readonly value: readonly number[];
+  /** Signed root of the rise of the sum of squares over the residual variance at each value: a straight line where linear theory holds. */
+  readonly deviation: readonly number[];
+  /** SI; a side that has no end is undefined. */
+  readonly interval95: readonly [number | undefined, number | undefined];
+  /** `step`: the sum of squares jumps there, as where a front crosses a sample; `bound`: of the parameter, or of what makes a vessel. */
+  readonly ends: readonly [ProfileEnd, ProfileEnd];
 }
 
 export interface FittedParameter {

@@ -99,17 +99,20 @@ function betterHalf(problem: Problem, starts: readonly Float64Array[], watch: Wa
 
 const samePlace = (a: Optimum, b: Optimum, apart: number): boolean => a.x.every((v, j) => Math.abs(v - b.x[j]) < apart);
 
-interface Effort {
+export interface Effort {
   readonly tolerance: number;
   readonly evaluationsPerUnknown: number;
   readonly polish: boolean;
 }
 const roughly: Effort = { tolerance: 1e-3, evaluationsPerUnknown: 10, polish: false };
-const closely: Effort = { tolerance: 1e-7, evaluationsPerUnknown: 30, polish: false };
+export const closely: Effort = { tolerance: 1e-7, evaluationsPerUnknown: 30, polish: false };
 export const fully: Effort = { tolerance: 1e-12, evaluationsPerUnknown: 200, polish: true };
 
-/** One descent from a point; an end of infinite sum where there is no vessel. */
-export function descend(problem: Problem, from: Float64Array, effort: Effort, watch: Watch): Optimum {
+/**
+ * One descent from a point; an end of infinite sum where there is no vessel.
+ * @param still  a coordinate that stays where it is
+ */
+export function descend(problem: Problem, from: Float64Array, effort: Effort, watch: Watch, still?: number): Optimum {
   const { coordinates } = problem.setup;
   const facts = from.length - coordinates.length;
   if (from.length === 0) {
@@ -126,8 +129,11 @@ export function descend(problem: Problem, from: Float64Array, effort: Effort, wa
     allowed: (x) => problem.evaluate(x) !== undefined,
     start: from,
     scale: new Float64Array(from.length).fill(1),
-    lower: [...coordinates.map((c) => c.from), ...new Array<number>(facts).fill(-Infinity)],
-    upper: [...coordinates.map((c) => c.to), ...new Array<number>(facts).fill(Infinity)],
+    lower: [
+      ...coordinates.map((c, j) => (j === still ? from[j] : c.from)),
+      ...new Array<number>(facts).fill(-Infinity),
+    ],
+    upper: [...coordinates.map((c, j) => (j === still ? from[j] : c.to)), ...new Array<number>(facts).fill(Infinity)],
     tolerance: effort.tolerance,
     polish: effort.polish,
     maxEvaluations: effort.evaluationsPerUnknown * (from.length + 1),
@@ -155,7 +161,7 @@ function hop(problem: Problem, from: Optimum, watch: Watch): Optimum {
   for (let round = 0; round < 10; round++) {
     const before = best;
     for (const walk of delayWalks(problem.setup, best.x)) {
-      const gap = walk.at.length > 1 ? walk.at[1] - walk.at[0] : 0;
+      const { gap } = walk;
       const { from: low, to: high } = problem.setup.coordinates[walk.index];
       for (const gaps of [-2, -1, 1, 2]) {
         const u = before.x[walk.index] + gaps * gap;

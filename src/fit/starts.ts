@@ -14,6 +14,8 @@ export interface DelayWalk {
   readonly index: number;
   /** u of the coordinate, ascending. */
   readonly at: Float64Array;
+  /** What moves the front by one sampling gap, or by one step of the walk where that is more; u. */
+  readonly gap: number;
 }
 
 /** Most steps of one walk: with denser sampling than this the front is seen in many samples and the steps smooth out. */
@@ -48,7 +50,8 @@ export function delayWalks(setup: Setup, from: Float64Array): DelayWalk[] {
   return [...chosen].map(([index, moved]) => {
     const steps = Math.min(mostSteps, Math.ceil(moved / gap));
     const [a, b] = setup.coordinates[index].draw;
-    return { index, at: Float64Array.from({ length: steps }, (_, k) => a + ((k + 0.5) / steps) * (b - a)) };
+    const at = Float64Array.from({ length: steps }, (_, k) => a + ((k + 0.5) / steps) * (b - a));
+    return { index, at, gap: steps > 1 ? (b - a) / steps : 0 };
   });
 }
 

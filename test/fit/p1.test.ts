@@ -15,7 +15,9 @@ const offset = [1.9510963e-3, 2.625e-4, 1] as const;
 const drift = [2.1802955e-6, 5.46e-7, 1 / 60] as const;
 
 describe("bypass, tube and quiet corner from the case's own start values", () => {
-  const { fit: found } = fit(networkAt("test/fit/p1/p1.yaml"), [trialAt("test/fit/p1/p1-pulse.yaml")]);
+  const network = networkAt("test/fit/p1/p1.yaml");
+  const trial = trialAt("test/fit/p1/p1-pulse.yaml");
+  const { fit: found } = fit(network, [trial]);
   if (!found) throw new Error("no fit");
 
   test("reaches the global optimum", () => {
@@ -46,5 +48,30 @@ describe("bypass, tube and quiet corner from the case's own start values", () =>
       expect(Math.abs((got?.standardError ?? NaN) / unit / error - 1)).toBeLessThan(1e-3);
     }
     expect(found.freeParameters).toBe(6);
+  });
+
+  // Single-start residual bootstrap of the same reference: 95 % of the tube volumes lie in 144.9 to 154.2 L, where the front
+  // crosses a sample; linear theory says 134 to 163 L.
+  test("says that the linear interval of the tube volume does not hold", () => {
+    const said = found.findings.filter((f) => f.code === "interval-not-linear");
+    expect(said.flatMap((f) => f.about)).toContain("riser");
+    expect(said.flatMap((f) => f.about)).not.toContain("bypass");
+    expect(found.profiles).toBeUndefined();
+  });
+
+  test("the profile ends where the front crosses a sample", () => {
+    const { fit: profiled } = fit(network, [trial], { profile: true });
+    const riser = profiled?.profiles?.find((p) => p.name === "riser");
+    const [low, high] = (riser?.interval95 ?? []).map((v) => (v ?? Number.NaN) * 1e3);
+    expect(Math.abs(low - 144.9)).toBeLessThan(0.15);
+    expect(Math.abs(high - 154.2)).toBeLessThan(0.15);
+    expect(riser?.ends).toEqual(["step", "step"]);
+    const bypass = profiled?.profiles?.find((p) => p.name === "bypass");
+    const linear = found.parameters.find((p) => p.name === "bypass")?.interval95 ?? [];
+    bypass?.interval95.forEach((v, k) => {
+      expect(Math.abs((v ?? Number.NaN) - linear[k])).toBeLessThan(0.05 * 2.681e-4);
+    });
+    expect(profiled?.findings.find((f) => f.code === "interval-by-profile")?.message).toContain("riser is 14");
+    expect(profiled?.residualSumOfSquares).toBe(found.residualSumOfSquares);
   });
 });

@@ -1,4 +1,4 @@
-import type { Estimate, Fit, FittedParameter, Nuisance } from "../../fit/result.js";
+import type { Estimate, Fit, FittedParameter, FittedProfile, Nuisance } from "../../fit/result.js";
 import { differenceInUnit, type Unit } from "../../units/unit.js";
 import { finite, quantity, series, unitName } from "./quantity.js";
 
@@ -32,6 +32,7 @@ export function fitJson(fit: Fit, time: Unit): Record<string, unknown> {
       residual: { unit: unitName(r.unit), values: Array.from(r.residual, (v) => finite(differenceInUnit(v, r.unit))) },
     })),
     held: fit.held,
+    ...(fit.profiles ? { profiles: Object.fromEntries(fit.profiles.map((p) => [p.name, profileJson(p)])) } : {}),
     findings: fit.findings,
   };
 }
@@ -46,6 +47,15 @@ export function parameterJson(p: FittedParameter): object {
     interval95: ends ?? null,
     ...(p.standardError === undefined || ends === undefined ? { why: "not-estimable" } : {}),
     atBound: p.atBound ?? null,
+  };
+}
+
+function profileJson({ unit, value, deviation, interval95, ends }: FittedProfile): object {
+  return {
+    value: series(Float64Array.from(value), unit),
+    deviation: { unit: "1", values: deviation.map(finite) },
+    interval95: interval95.map((v) => (v === undefined ? null : quantity(v, unit).value)),
+    ends,
   };
 }
 

@@ -1,3 +1,4 @@
+import type { ProfileEnd } from "../../fit/profile.js";
 import type { Estimate, Fit, FitFinding } from "../../fit/result.js";
 import { formatNumber } from "../../units/format.js";
 import { errorText, supported } from "./digits.js";
@@ -11,6 +12,7 @@ export function fitText(title: string, fit: Fit): string {
   return blocks(
     `${title}${marked}`,
     parametersTable(fit),
+    profileTable(fit),
     nuisanceTable(fit),
     correlationTable(fit),
     [
@@ -46,6 +48,27 @@ function parametersTable(fit: Fit): string {
         p.unit.name,
         p.atBound ? `at its ${p.atBound} bound` : "",
       ];
+    }),
+  );
+}
+
+const endsIn: Readonly<Record<ProfileEnd, string>> = {
+  smooth: "",
+  step: "ends in a jump",
+  bound: "ends at a bound",
+  open: "no end",
+};
+
+function profileTable({ profiles }: Fit): string {
+  if (!profiles || profiles.length === 0) return "";
+  return table(
+    [{ title: "profile" }, right("95 % from"), right("to"), { title: "unit" }, { title: "" }],
+    profiles.map(({ name, unit, interval95: [low, high], ends, value, deviation }) => {
+      const best = value[deviation.indexOf(0)];
+      const spread = (Math.abs((high ?? best) - best) + Math.abs((low ?? best) - best)) / 4;
+      const words = [...new Set(ends.map((e, k) => (endsIn[e] ? `${endsIn[e]} ${k === 0 ? "below" : "above"}` : "")))];
+      const end = (v: number | undefined): string => (v === undefined ? "" : supported(v, unit, spread));
+      return [name, end(low), end(high), unit.name, words.filter(Boolean).join(", ")];
     }),
   );
 }

@@ -104,6 +104,20 @@ export const runEntries = {
     fix: (d) => `do not quote ${d.name}; keep it at a known value or measure longer, denser or at another place`,
     example: { name: "renewal" },
   }),
+  "interval-not-linear": entry({
+    severity: "warning",
+    says: (d: { name: string; times: number }) =>
+      `the interval of ${d.name} does not hold: at its ends the sum of squares has risen to ${d.times > 100 ? "more than 100" : d.times.toFixed(d.times < 1 ? 2 : 1)} times what linear theory says, as where a front crosses a sample or the curve bends`,
+    fix: (d) => `run the fit with --profile, and quote the interval of ${d.name} from there`,
+    example: { name: "riser", times: 7.1 },
+  }),
+  "interval-by-profile": entry({
+    severity: "warning",
+    says: (d: { name: string; from: string; to: string; linear: readonly [string, string]; step: boolean }) =>
+      `by its profile the 95 % interval of ${d.name} is ${d.from} to ${d.to}; the linear one, ${d.linear[0]} to ${d.linear[1]}, does not hold${d.step ? ": the sum of squares jumps at its end, as where a front crosses a sample" : ""}`,
+    fix: (d) => `quote the interval of ${d.name} from the profile`,
+    example: { name: "riser", from: "145.2 L", to: "154 L", linear: ["134.4 L", "162.8 L"], step: true },
+  }),
   "interval-cut": entry({
     severity: "warning",
     says: (d: { name: string; side: "lower" | "upper" | "lower and upper" }) =>
