@@ -40,6 +40,16 @@ describe("fit", () => {
     expect(high - low).toBeLessThan(0.01);
   });
 
+  test("--profile adds a profile of every parameter", async () => {
+    const { document } = await json([...command, "--profile"], { files });
+    const profile = at(document, "profiles.size") as unknown as Record<string, never>;
+    expect(Object.keys(profile)).toEqual(["value", "deviation", "interval95", "ends"]);
+    const [low, high] = profile.interval95 as number[];
+    expect(low).toBeLessThan(80.001);
+    expect(high).toBeGreaterThan(79.999);
+    expect((await backmix([...command, "--profile"], { files })).out).toMatch(/^ {2}profile +95 % from +to +unit/m);
+  });
+
   test("residuals add up to the sum of squares", async () => {
     const { document } = await json(command, { files });
     const residuals = at(document, "readings.0.residual.values") as unknown as number[];

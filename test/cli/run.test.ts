@@ -28,7 +28,7 @@ describe("wrong usage ends with 2, a hint and no stack", () => {
     ["a duty with times", ["simulate", "tank.yaml", "--duty", "duty.yaml", "--until", "6 h"]],
     ["curves to no CSV", ["simulate", "tank.yaml", "--pulse", "feed", "-o", "curves.xlsx"]],
     ["a fit without trials", ["fit", "tank.yaml"]],
-    ["profiles of later", ["fit", "tank.yaml", "--trial", "pulse.yaml", "--profile"]],
+    ["bootstrap of later", ["fit", "tank.yaml", "--trial", "pulse.yaml", "--bootstrap", "9"]],
     ["a bootstrap of later", ["fit", "tank.yaml", "--trial", "pulse.yaml", "--bootstrap", "99"]],
     ["writing to standard input", ["fit", "-", "--trial", "pulse.yaml", "--write"]],
     ["resuming of later", ["fit", "tank.yaml", "--trial", "pulse.yaml", "--resume", "x.json"]],
@@ -57,8 +57,8 @@ describe("wrong usage ends with 2, a hint and no stack", () => {
   });
   test("says which command or option is not there yet", async () => {
     expect((await backmix(["sweep", "x"])).err).toContain("'sweep' is not in this version");
-    expect((await backmix(["fit", "tank.yaml", "--trial", "pulse.yaml", "--profile"], { files })).err).toContain(
-      "'--profile' is not in this version",
+    expect((await backmix(["simulate", "tank.yaml", "--transient"], { files })).err).toContain(
+      "'--transient' is not in this version",
     );
   });
   test("a wrong name is answered with the nearest", async () => {

@@ -142,7 +142,14 @@ describe("what a fit must say", () => {
   test("a trial of another vessel is a problem with its place", () => {
     const network = line("{last: {value: 5 L, between: [1 L, 40 L]}}", "50 L");
     const trial = trialFor(network, { last: 0.02 });
-    const lost = { ...trial, readings: trial.readings.map((r) => ({ ...r, at: "outt" })) };
+    const lost = {
+      ...trial,
+      readings: trial.readings.map((r) => ({
+        ...r,
+        at: "outt",
+        places: r.places.map((p) => ({ ...p, name: "outt" })),
+      })),
+    };
     expect(fit(network, [lost]).problems.map((p) => p.code)).toEqual(["unknown-place"]);
   });
 });
