@@ -12,7 +12,7 @@ export function engineNamed(name: SimulateOptions["engine"], plant: Plant, until
 }
 
 /** An independent engine to check another by. */
-export const engineBeside = (engine: AnyEngine): AnyEngine => (engine === exact ? ode : exact);
+export const engineBeside = (engine: AnyEngine, plant: Plant): AnyEngine => (engine === ode ? engineFor(plant) : ode);
 
 /** Largest difference between two sets of curves, as a fraction of the largest value of the first. */
 export function largestDifference(a: readonly Float64Array[], b: readonly Float64Array[]): number {

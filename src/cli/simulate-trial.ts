@@ -40,7 +40,7 @@ export function simulateTrial(network: Network, options: SimulateOptions, { inpu
   const wanted = trial.readings.map(() => ({ time: clock.si.map((t) => t + origin) }));
   const engine = engineNamed(options.engine, plant, clock.si[clock.si.length - 1]);
   const curves = trialResponse(plant, trial, wanted, engine);
-  const beside = engineBeside(engine);
+  const beside = engineBeside(engine, plant);
   const other = options.verify ? trialResponse(plant, trial, wanted, beside) : undefined;
   const difference = other && largestDifference(curves, other);
   const until = origin + clock.si[clock.si.length - 1];

@@ -34,7 +34,7 @@ export function simulateUnit(network: Network, options: SimulateOptions, { io }:
   const engine = engineNamed(options.engine, plant, clock.si[clock.si.length - 1]);
   const run = (by: typeof engine) => tracerResponse(plant, { at: into, form }, clock.si, { engine: by, at });
   const result = run(engine);
-  const other = options.verify ? run(engineBeside(engine)) : undefined;
+  const other = options.verify ? run(engineBeside(engine, plant)) : undefined;
   const difference = other && largestDifference(...curvesOf(result, other));
   const valueUnit = form === "pulse" && !closed ? perUnit(clock.unit) : pureNumber;
   const areaUnit = closed ? clock.unit : pureNumber;

@@ -1,7 +1,11 @@
 import type { Algebra } from "../numerics/algebra.js";
 import { type Complex, complex } from "../numerics/complex.js";
 import { type Taylor, taylor, variable } from "../numerics/taylor.js";
+import type { Pockets } from "./pockets.js";
+import { type Realization, realizationAt, type UnitRealization } from "./realization.js";
 import type { Stays } from "./stays.js";
+
+export type { Pockets } from "./pockets.js";
 
 /** How a block's liquid mixes on its way, for what its curve alone does not settle: reaction. */
 export type Mixing =
@@ -10,12 +14,6 @@ export type Mixing =
   | { readonly is: "dispersed"; readonly peclet: number }
   /** Entering streams mix; from there every parcel stays by itself to the outlet, its stay shared out as here. */
   | { readonly is: "segregated"; readonly stays: Stays };
-
-/** Quiet liquid that exchanges with the flow all along a body: volume held in m3, exchange in m3/s. */
-export interface Pockets {
-  readonly volume: number;
-  readonly exchange: number;
-}
 
 /** How a page of equations writes a block: G(s), its through-flow, and its keys by name. */
 export interface BlockSymbols {
@@ -48,6 +46,8 @@ export interface Block {
   readonly spread: (s: Complex, flow: number) => Complex;
   /** Coefficients of G in powers of s, orders 0 to 3; infinite from the order on at which the moments are. */
   readonly series: (flow: number) => Taylor;
+  /** The same in time, as equations to integrate, at a flow; undefined where there are none. */
+  readonly realize: (flow: number) => Realization | undefined;
 }
 
 /** Orders of s that moments need: area, mean, variance, third moment. */
@@ -62,6 +62,8 @@ interface Body {
   readonly formula: (key: BlockSymbols["key"]) => string;
   /** G of the dimensionless z = s V/Q, one formula for numbers and series. */
   readonly response: <T>(z: T, algebra: Algebra<T>) => T;
+  /** Equations whose transfer function is the response. */
+  readonly unit?: () => UnitRealization | undefined;
 }
 
 /**
@@ -69,8 +71,9 @@ interface Body {
  * the way makes z = (s V + s q h / (q + s h)) / Q, h held in them and q exchanged with them.
  * @see K.H. Coats, B.D. Smith, Soc. Petrol. Eng. J. 4 (1964) 73-84 (from memory)
  */
-export function formulaBlock({ response, formula, ...body }: Body): Block {
+export function formulaBlock({ response, formula, unit, ...body }: Body): Block {
   const { volume, pockets } = body;
+  let made: { realization: Realization | undefined } | undefined;
   const transfer = (s: Complex, flow: number): Complex =>
     response(complex.add(complex.scale(s, volume / flow), pocketTime(s, complex, pockets, flow)), complex);
   return {
@@ -85,7 +88,16 @@ export function formulaBlock({ response, formula, ...body }: Body): Block {
       const s = variable(orders);
       return response(series.add(series.scale(s, volume / flow), pocketTime(s, series, pockets, flow)), series);
     },
+    realize() {
+      if (!made && volume > 0 && unit) made = { realization: once(unit, volume, pockets) };
+      return made?.realization;
+    },
   };
+}
+
+function once(unit: () => UnitRealization | undefined, volume: number, pockets: Pockets | undefined) {
+  const realized = unit();
+  return realized && realizationAt(realized, volume, pockets);
 }
 
 /** z in math, with pockets. */

@@ -1,6 +1,8 @@
 import { cascadeBody } from "../svg/bodies.js";
 import { formulaBlock } from "./block.js";
+import { fractionSum } from "./exponential-sums.js";
 import type { CompartmentKind, Ports } from "./kind.js";
+import type { UnitRealization } from "./realization.js";
 import { heldIn, pocketsOf, stagnantKey, withPockets } from "./stagnant.js";
 import { gammaStays } from "./stays.js";
 
@@ -39,6 +41,7 @@ export const cascade: CompartmentKind = {
               volume,
               pockets,
               formula: (key) => `\\left(1 + z / ${key("tanks")}\\right)^{-${key("tanks")}}`,
+              unit: () => tanksInSeries(tanks),
               response: (z, { exp, log1p, scale }) => exp(scale(log1p(scale(z, 1 / tanks)), -tanks)),
             }),
           )
@@ -48,3 +51,30 @@ export const cascade: CompartmentKind = {
   picture: (box, of) => withPockets(box, of, (inner) => cascadeBody(inner, of.values.tanks)),
   aspect: () => 4,
 };
+
+/** A fraction of a tank closer to none, or to a whole one, is that. */
+const noFraction = 1e-10;
+
+/** Whole tanks one after another, and what is left of a tank as a sum of exponentials. */
+function tanksInSeries(tanks: number): UnitRealization {
+  const whole = Math.floor(tanks + noFraction);
+  const fraction = tanks - whole;
+  const rest =
+    fraction > noFraction ? fractionSum(fraction) : { rate: new Float64Array(0), weight: new Float64Array(0) };
+  const size = whole + rest.rate.length;
+  const rates = Array.from({ length: size }, (_, i) => {
+    const rate = i < whole ? tanks : tanks * rest.rate[i - whole];
+    const row = new Map([[i, -rate]]);
+    if (i > 0) row.set(Math.min(i, whole) - 1, rate);
+    return row;
+  });
+  const input = new Float64Array(size);
+  input[0] = tanks;
+  const output = new Float64Array(size);
+  output.set(rest.weight, whole);
+  if (size === whole) output[whole - 1] = 1;
+  const held = Float64Array.from({ length: size }, (_, i) =>
+    i < whole ? 1 / tanks : rest.weight[i - whole] / rest.rate[i - whole] / tanks,
+  );
+  return { rates, input, output, held, smooths: whole + (size > whole ? 1 : 0) };
+}

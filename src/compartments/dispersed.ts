@@ -1,5 +1,6 @@
 import { type Algebra, evenHyperbolic } from "../numerics/algebra.js";
 import { dispersedBody } from "../svg/bodies.js";
+import { axialElements } from "./axial-elements.js";
 import { formulaBlock } from "./block.js";
 import type { CompartmentKind, Ports } from "./kind.js";
 import { heldIn, pocketsOf, stagnantKey, withPockets } from "./stagnant.js";
@@ -45,6 +46,7 @@ export const dispersed: CompartmentKind = {
               mixing: { is: "dispersed", peclet },
               volume,
               pockets,
+              unit: () => axialElements(peclet, of.words.ends === "open"),
               ...ends,
             }),
           )

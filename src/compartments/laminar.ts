@@ -2,7 +2,9 @@ import { type Complex, complex } from "../numerics/complex.js";
 import { scaledExpint } from "../numerics/expint.js";
 import { laminarBody } from "../svg/bodies.js";
 import type { Block } from "./block.js";
+import { laminarSum } from "./exponential-sums.js";
 import type { CompartmentKind, Ports } from "./kind.js";
+import { realizationAt, type UnitRealization } from "./realization.js";
 import { laminarStays } from "./stays.js";
 
 /** Laminar flow in a round tube. R.C.L. Bosworth, Phil. Mag. 39 (1948) 847-862; Danckwerts, Chem. Eng. Sci. 2 (1953) 1-13. */
@@ -45,6 +47,20 @@ function laminarTube(volume: number): Block {
     direct: () => 0,
     spread: undelayed,
     transfer: (s, flow) => complex.multiply(complex.exp(complex.scale(s, -volume / flow / 2)), undelayed(s, flow)),
+    realize: () => realizationAt(layers(), volume, undefined),
     series: (flow) => Float64Array.of(1, -volume / flow, Number.POSITIVE_INFINITY, Number.NEGATIVE_INFINITY),
+  };
+}
+
+/** Half a volume of delay, then tanks side by side. */
+function layers(): UnitRealization {
+  const { rate, weight } = laminarSum();
+  return {
+    delay: 0.5,
+    rates: Array.from(rate, (r, i) => new Map([[i, -2 * r]])),
+    input: rate.map((r) => 2 * r),
+    output: weight,
+    held: weight.map((w, i) => w / (2 * rate[i])),
+    smooths: 1,
   };
 }

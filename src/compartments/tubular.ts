@@ -1,8 +1,10 @@
 import type { Algebra } from "../numerics/algebra.js";
 import { complex } from "../numerics/complex.js";
+import { sparseRows } from "../numerics/sparse.js";
 import { tubularBody } from "../svg/bodies.js";
 import { type Block, formulaBlock, type Pockets, pastPockets, pocketTime } from "./block.js";
 import type { CompartmentKind, Ports } from "./kind.js";
+import type { Realization } from "./realization.js";
 import { heldIn, pocketsOf, stagnantKey, withPockets } from "./stagnant.js";
 
 /** Ideal plug flow: a true transport delay V/Q, never smeared. Danckwerts, Chem. Eng. Sci. 2 (1953) 1-13. */
@@ -51,5 +53,54 @@ function pocketedTube(volume: number, pockets: Pockets): Block {
     delay: (flow) => volume / flow,
     undelayed: (s, flow) => response(pocketTime(s, complex, pockets, flow), complex),
     ...pastPockets(response, pockets),
+    realize: (flow) => visits(volume, pockets, flow),
+  };
+}
+
+/** More visits to pockets than these are not followed one by one. */
+const mostVisits = 20_000;
+
+/**
+ * On its way a parcel visits pockets k times with the chance of Poisson's law, mean exchange / flow, and stays as long as in k
+ * tanks in series: a chain of tanks, the outflow a blend of all of them. At one flow only: the visits of a parcel in a flow
+ * that varies depend on all of it.
+ */
+function visits(volume: number, { volume: held, exchange }: Pockets, flow: number): Realization | undefined {
+  const mean = exchange / flow;
+  const size = Math.ceil(mean + 9 * Math.sqrt(mean) + 20);
+  if (!(volume > 0) || size > mostVisits) return undefined;
+  const rate = exchange / held;
+  const chance = new Float64Array(size + 1);
+  let log = -mean;
+  for (let k = 0; k <= size; k++) {
+    if (k > 0) log += Math.log(mean / k);
+    chance[k] = Math.exp(log);
+  }
+  let more = 0; // chance of at least k visits
+  const waiting = new Float64Array(size);
+  for (let k = size; k > 0; k--) {
+    more += chance[k];
+    waiting[k - 1] = (more * flow) / rate;
+  }
+  const output = chance.slice(1);
+  output[size - 1] += 1 - chance[0] - more;
+  const input = new Float64Array(size);
+  input[0] = rate / flow;
+  return {
+    delay: volume,
+    through: sparseRows(Array.from({ length: size }, () => new Map())),
+    still: sparseRows(
+      Array.from({ length: size }, (_, k) => {
+        const row = new Map([[k, -rate]]);
+        if (k > 0) row.set(k - 1, rate);
+        return row;
+      }),
+    ),
+    input,
+    output,
+    direct: chance[0],
+    held: waiting,
+    smooths: 1,
+    steadyOnly: true,
   };
 }

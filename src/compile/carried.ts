@@ -4,16 +4,17 @@ import { problem } from "../problems/report.js";
 import { Part, type Plant } from "./plant.js";
 
 /** What is to be done with a plant: followed by integrating, by inverting transfer functions, or its steady state with reaction. */
-export type Work = "tracer" | "laplace" | "reaction";
+export type Work = "tracer" | "ode" | "laplace" | "reaction";
 
 /** What this version does in about half a minute: nodes in all, and nodes that feed one another. */
 const limits: Readonly<Record<Work, { says: string; nodes: number; circle: number }>> = {
   tracer: { says: "compute tracer curves of", nodes: 20_000, circle: 20_000 },
+  ode: { says: "integrate tracer curves of", nodes: 20_000, circle: 20_000 },
   laplace: { says: "compute tracer curves by transfer functions of", nodes: 5_000, circle: 1_000 },
   reaction: { says: "solve reaction in", nodes: 2_000_000, circle: 2_000_000 },
 };
 
-/** Why this version cannot do a work: bodies that only their transfer function describes (tracer), too many nodes. */
+/** Why this version cannot do a work: bodies that are no cells, tubes and junctions (exact), or have no equations in time (ode), too many nodes. */
 export function uncarried(plant: Plant, work: Work = "tracer"): Problem[] {
   const { size, part } = plant.columns;
   const { says, nodes, circle } = limits[work];
@@ -23,11 +24,13 @@ export function uncarried(plant: Plant, work: Work = "tracer"): Problem[] {
   ];
   if (size > nodes) return tooMany(size, nodes, false);
   if (largest > circle) return tooMany(largest, circle, true);
-  if (work !== "tracer" || !part.includes(Part.Block)) return [];
-  return plant.nodes.flatMap(({ part, block, name }) => {
+  if ((work !== "tracer" && work !== "ode") || !part.includes(Part.Block)) return [];
+  return plant.nodes.flatMap(({ part, block, name, inflow }) => {
     if (part !== Part.Block || !block) return [];
+    if (work === "ode" && (!(inflow > 0) || block.realize(inflow))) return [];
     const { at } = plant.network.compartments.find((body) => body.name === name) ?? plant.network;
-    return [problem("not-carried", at, { name, is: block.is })];
+    const engine = work === "ode" ? "ode" : "exact";
+    return [problem("not-carried", at, { name, is: block.is, engine })];
   });
 }
 

@@ -9,6 +9,12 @@ import { evaluate, stepPolynomial } from "./stiff-polynomial.js";
 export interface StiffStretch extends Stretch {
   /** Length of the first step, if something is known of it. */
   readonly firstStep?: number;
+  /** No step is longer. */
+  readonly longest?: number;
+  /** Error, in units of the tolerance, of what hangs on a trial step from t, y with stages y + z: it counts beside the state's. */
+  readonly judge?: (t: number, h: number, y: Float64Array, z: readonly Float64Array[]) => number;
+  /** Sees every accepted step; true pauses the run at its end. Arrays are reused. */
+  readonly accepted?: (t: number, h: number, y: Float64Array, z: readonly Float64Array[]) => boolean;
 }
 
 export interface StiffResult extends StretchResult {
@@ -101,7 +107,12 @@ export function radauIntegrator(given: StiffProblem, relative: number, stages = 
       h *= part;
       factored = false;
     };
+    const longest = p.longest ?? Number.POSITIVE_INFINITY;
     for (;;) {
+      if (Math.abs(h) > longest) {
+        h = direction * longest;
+        factored = false;
+      }
       const left = p.to - t;
       const ending = Math.abs(h) * 1.01 >= Math.abs(left);
       if (ending && h !== left) {
@@ -139,7 +150,8 @@ export function radauIntegrator(given: StiffProblem, relative: number, stages = 
         continue;
       }
       const before = method.evaluations;
-      const error = Math.max(1e-10, method.error(t, h, y, f, scale, again));
+      const judged = p.judge?.(t, h, y, method.z) ?? 0;
+      const error = Math.max(1e-10, method.error(t, h, y, f, scale, again), judged);
       counts.rhs += method.evaluations - before;
       const most = 2 * method.mostIterations;
       const effort = (1 + most) / (method.iterations + most);
@@ -159,6 +171,7 @@ export function radauIntegrator(given: StiffProblem, relative: number, stages = 
       }
       const grown = control.accepted(h, error, effort);
       last.take(t, h, y, method.z);
+      const enough = p.accepted?.(t, h, y, method.z) ?? false;
       t = ending ? p.to : t + h;
       for (; outputs < p.outputs.length && (p.outputs[outputs] - t) * direction < 0; outputs++) {
         evaluate(last, p.outputs[outputs], row);
@@ -169,6 +182,7 @@ export function radauIntegrator(given: StiffProblem, relative: number, stages = 
       for (; outputs < p.outputs.length && (ending || p.outputs[outputs] === t); outputs++) output(y);
       counts.steps++;
       if (ending) return finish();
+      if (enough) return finish({ paused: true });
       rescale(p, y);
       gapSeen = false;
       again = false;

@@ -1,67 +1,99 @@
-import { integrate } from "../numerics/integrate.js";
-import { multiply } from "../numerics/sparse.js";
-import { lagsAsStates } from "./lags.js";
-import { type Answer, driveAt, type TracerEngine } from "./linear-system.js";
+import type { Realization } from "../compartments/realization.js";
+import { requireCarried } from "../compile/carried.js";
+import { Part, type Plant } from "../compile/plant.js";
+import { arrivals } from "./arrivals.js";
+import { partsOf } from "./entry.js";
+import { extrapolation } from "./extrapolation.js";
+import { type FlowCourse, steadyCourse } from "./flow-course.js";
+import { integrable } from "./integrable.js";
+import { Integration, type Put } from "./integration.js";
+import { type Drive, instant } from "./linear-system.js";
+import { unrolledTracing } from "./trace.js";
+import type { TracerWay, Tracing } from "./tracing.js";
 
-/** Relative tolerance of a step, and the absolute one beside the largest state that the drive can make. */
-const relative = 1e-11;
-const absolute = 1e-13;
+/** Plants of more nodes, without blocks, are stepped explicitly where they are not stiff. */
+const manyNodes = 1500;
 
 /**
- * The compiled balances in time, by extrapolation (odex), stopped at every break of the drive. Tubes are no part of it:
- * they are unrolled, so no front meets an integrator. The integrals are integrated as states of their own.
+ * The balances in time: cells and blocks are states of a stiff integrator, tubes exact delays, a pulse an event with an
+ * amount that no integrator meets. Works with every kind of body, and with flows that vary in time.
  */
-export const ode: TracerEngine = {
+export const ode: TracerWay = {
   name: "ode",
-  run(asked, drive, wanted) {
-    const { system, queries } = lagsAsStates(asked, wanted, () => true);
-    const n = system.input.length;
-    const times = Float64Array.from(
-      new Set(queries.flatMap((q) => (q.signal.states.length > 0 ? [...q.times].filter((t) => t >= 0) : []))),
-    ).sort();
-    const end = times[times.length - 1] ?? 0;
-    const start = new Float64Array(2 * n);
-    for (let i = 0; i < n; i++) start[i] = system.input[i] * drive.amount;
-    const dx = new Float64Array(n);
-    const size = absolute * sizeOf(drive.amount, drive.level, end) * system.input.reduce((m, b) => Math.max(m, b), 0);
-    const solved = integrate({
-      rhs: (u, y, dy) => {
-        multiply(system.rates, y, dx);
-        const { rate } = drive.times.length > 0 ? driveAt(drive, u) : { rate: 0 };
-        for (let i = 0; i < n; i++) {
-          dy[i] = dx[i] + system.input[i] * rate;
-          dy[n + i] = y[i];
-        }
-      },
-      start,
-      from: 0,
-      to: end,
-      outputs: times,
-      stops: drive.times,
-      relative,
-      absolute: Float64Array.from(start, (_, i) => Math.max(1e-300, i < n ? size : size * Math.max(end, 1))),
-    });
-    const at = new Map(Array.from(solved.times, (t, i) => [t, i]));
-    const answers = queries.map((q): Answer => {
-      const answer = { value: new Float64Array(q.times.length), integral: new Float64Array(q.times.length) };
-      q.times.forEach((u, i) => {
-        if (u < 0) return;
-        const { states, weights } = q.signal;
-        const state = solved.states[at.get(u) ?? -1];
-        const { rate, total } = driveAt(drive, u);
-        const sum = (offset: number) => states.reduce((m, k, w) => m + weights[w] * state[offset + k], 0);
-        const known = state !== undefined || states.length === 0;
-        answer.value[i] = known ? q.signal.direct * rate + sum(0) : Number.NaN;
-        answer.integral[i] = known ? q.signal.direct * total + sum(n) : Number.NaN;
-      });
-      return answer;
-    });
-    const { end: how } = solved;
-    const stopped = how === "reached" ? undefined : `the integrator stopped at ${how.stopped} s (${how.why})`;
-    return { answers, stopped };
+  trace(plant, entry, horizon) {
+    requireCarried(plant, "ode");
+    if (plant.columns.size > manyNodes && !plant.columns.part.includes(Part.Block)) {
+      return unrolledTracing(plant, entry, horizon, extrapolation);
+    }
+    return integrate(plant, steadyCourse(plant), horizon, (drive) => ({ entry: partsOf(entry), drive }));
   },
 };
 
-function sizeOf(amount: number, level: Float64Array, span: number): number {
-  return amount + level.reduce((m, w) => Math.max(m, Math.abs(w)), 0) * span;
+/** Follows tracer through a plant whose flows take a course. */
+export function integrate(plant: Plant, course: FlowCourse, horizon: number, putOf: (drive: Drive) => Put): Tracing {
+  const realized = plant.nodes.map((n): Realization | undefined =>
+    n.inflow > 0 ? n.block?.realize(n.inflow) : undefined,
+  );
+  const net = integrable(plant, realized);
+  let last: { drive: Drive; looks: Set<number>; run: Integration } | undefined;
+  const outlets = plant.outlets.map((o) => o.node);
+  const runOf = (drive: Drive, looks: readonly number[]): Integration => {
+    const known = last?.drive === drive ? last : undefined;
+    if (known && looks.every((i) => known.looks.has(i))) return known.run;
+    const all = new Set([...(known?.looks ?? outlets), ...looks]);
+    const run = new Integration(net, course, putOf(drive), horizon, [...all]);
+    last = { drive, looks: all, run };
+    return run;
+  };
+  let unit: ReturnType<typeof arrivals> | undefined;
+  return {
+    get truncated() {
+      return (last?.run.leftOut ?? 0) > 0;
+    },
+    passagesAt(node) {
+      unit ??= arrivals(net, course, putOf(instant(1)).entry, instant(1), horizon);
+      const direct = new Map((unit.jumps.get(node) ?? []).map((time): [number, number] => [time, 0]));
+      for (const { time, amount } of unit.spikes.get(node) ?? []) direct.set(time, amount / course.through(node, time));
+      return [...direct].map(([delay, share]) => ({ delay, direct: share })).sort((a, b) => a.delay - b.delay);
+    },
+    see(drive, looks) {
+      const run = runOf(
+        drive,
+        looks.map((l) => l.node),
+      );
+      const seen = looks.map(({ node, times, lag = 0, integral = true }) => {
+        const value = lag > 0 ? run.lagged(node, lag, times) : times.map((t) => (t < 0 ? 0 : run.leaving(node, t, 1)));
+        // What a detector has not shown yet, it holds.
+        const sum = (t: number, i: number): number =>
+          t < 0 ? 0 : run.integral(node, t) + spikesUntil(run, node, t, course) - lag * value[i];
+        return { value, integral: integral && course.constant ? times.map(sum) : new Float64Array(times.length) };
+      });
+      const { stopped } = run;
+      return {
+        seen,
+        stopped: stopped && `the integrator stopped at ${stopped.t} s (${stopped.why}), in ${stopped.node}`,
+      };
+    },
+    balance(drive, until) {
+      const run = runOf(drive, []);
+      const left = outlets.reduce((sum, node) => sum + run.left(node, until), 0);
+      const inside = run.inside();
+      const injected = run.injected(until);
+      const recovered = left + inside;
+      return {
+        injected,
+        left,
+        inside,
+        recovered,
+        closure: injected > 0 ? Math.abs(injected - recovered) / injected : 0,
+      };
+    },
+  };
+}
+
+function spikesUntil(run: Integration, node: number, t: number, course: FlowCourse): number {
+  let sum = 0;
+  for (const { time, amount } of run.spikes(node))
+    if (time <= t * (1 + 2e-12)) sum += amount / course.through(node, time);
+  return sum;
 }

@@ -56,7 +56,8 @@ export function trace(
   return tracing;
 }
 
-function unrolledTracing(plant: Plant, entry: Entry, horizon: number, engine: TracerEngine): Tracing {
+/** By an engine that integrates what is left when tubes are unrolled. */
+export function unrolledTracing(plant: Plant, entry: Entry, horizon: number, engine: TracerEngine): Tracing {
   const unrolled = unroll(plant, entry, horizon);
   return {
     truncated: unrolled.truncated,

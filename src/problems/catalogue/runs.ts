@@ -4,10 +4,13 @@ import { entry } from "../problem.js";
 export const runEntries = {
   "not-carried": entry({
     severity: "error",
-    says: (d: { name: string; is: string }) =>
-      `'${d.name}' is ${d.is}, which only the laplace engine can follow in time`,
-    fix: "leave the choice of the engine to the tool, or ask for `--engine laplace`, without `--verify`",
-    example: { name: "core", is: "axial dispersion" },
+    says: (d: { name: string; is: string; engine: "exact" | "ode" }) =>
+      `'${d.name}' is ${d.is}, which the ${d.engine} engine cannot follow in time`,
+    fix: (d) =>
+      d.engine === "ode"
+        ? "ask for `--engine laplace`, without `--verify`; the ode engine needs a `volume` above 0 beside pockets, a Péclet number under 1.6e7, and pockets visited less than 20,000 times"
+        : "leave the choice of the engine to the tool, or ask for `--engine laplace` or `--engine ode`",
+    example: { name: "core", is: "axial dispersion", engine: "exact" },
   }),
   "too-many-passes": entry({
     severity: "error",

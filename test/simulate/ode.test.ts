@@ -1,0 +1,94 @@
+import { describe, expect, test } from "vitest";
+import { ode } from "../../src/simulate/ode.js";
+import { tracerResponse } from "../../src/simulate/tracer.js";
+import { vessel } from "../transfer/vessel.js";
+import { peakOf, plantOf } from "./plants.js";
+
+/** Largest difference between ode and the engine that is chosen, as a part of the peak; and the balance of ode. */
+function compare(body: string, form: "pulse" | "step" = "pulse") {
+  const plant = plantOf(vessel(body));
+  const unit = plant.volume.active / plant.feeds[0].flow;
+  const times = Float64Array.from({ length: 101 }, (_, i) => (i * 4 * unit) / 100);
+  const [a, b] = [{}, { engine: ode }].map((o) => tracerResponse(plant, { at: "in", form }, times, o));
+  expect(a.engine).not.toBe("ode");
+  expect(b.stopped).toBeUndefined();
+  expect(b.balance.closure).toBeLessThan(1e-9);
+  let most = 0;
+  a.readings.forEach((r, k) => {
+    const peak = peakOf(r.value) || 1;
+    const other = b.readings[k];
+    for (let i = 0; i < times.length; i++) {
+      most = Math.max(most, Math.abs(r.value[i] - other.value[i]) / peak);
+      most = Math.max(most, Math.abs(r.cumulative[i] - other.cumulative[i]));
+    }
+    expect(other.spikes.length).toBe(r.spikes.length);
+    r.spikes.forEach((s, n) => {
+      expect(Math.abs(other.spikes[n].time / s.time - 1)).toBeLessThan(1e-12);
+      expect(Math.abs(other.spikes[n].area - s.area)).toBeLessThan(1e-12);
+    });
+  });
+  return most;
+}
+
+describe("every kind: two independent ways to its curve", () => {
+  test.each([
+    "stirred, volume: 2 L",
+    "stirred, volume: 2 L, repeat: 40, backflow: 80 %",
+    "tubular, volume: 2 L",
+    "tubular, volume: 2 L, stagnant: {volume: 1 L, exchange: 3 L/min}",
+    "dispersed, volume: 2 L, peclet: 0.01",
+    "dispersed, volume: 2 L, peclet: 5, stagnant: {volume: 1 L, exchange: 0.4 L/min}",
+    "dispersed, volume: 2 L, peclet: 120",
+    "dispersed, volume: 2 L, peclet: 3, ends: open",
+    "dispersed, volume: 2 L, peclet: 120, ends: open",
+    "laminar, volume: 2 L",
+    "cascade, volume: 2 L, tanks: 1.4",
+    "cascade, volume: 2 L, tanks: 1.95",
+    "cascade, volume: 2 L, tanks: 30.5",
+    "cascade, volume: 2 L, tanks: 2.7, stagnant: {volume: 1 L, exchange: 0.4 L/min}",
+  ])("%s", (keys) => {
+    expect(compare(`  a: {kind: ${keys}, to: out}`)).toBeLessThan(1e-9);
+    expect(compare(`  a: {kind: ${keys}, to: out}`, "step")).toBeLessThan(1e-9);
+  });
+
+  test.each([
+    "dispersed, volume: 2 L, peclet: 10000",
+    "dispersed, volume: 2 L, peclet: 2000, ends: open",
+    "cascade, volume: 2 L, tanks: 600.5",
+  ])("far out: %s", (keys) => {
+    expect(compare(`  a: {kind: ${keys}, to: out}`)).toBeLessThan(1e-9);
+  });
+});
+
+describe("tubes in loops", () => {
+  test.each([
+    [
+      "one, and a tank",
+      "  a: {kind: tubular, volume: 1 L, to: b}\n  b: {kind: stirred, volume: 1 L, to: {a: 80 %, out: rest}}",
+    ],
+    ["one alone: spikes", "  a: {kind: tubular, volume: 1 L, to: {a: 80 %, out: rest}}"],
+    [
+      "two side by side, and no tank",
+      "  a: {kind: junction, to: {b: 50 %, c: rest}}\n  b: {kind: tubular, volume: 1 L, to: d}\n  c: {kind: tubular, volume: 1.5 L, to: d}\n  d: {kind: junction, to: {a: 60 %, out: rest}}",
+    ],
+    [
+      "laminar flow in a loop, behind a tube",
+      "  a: {kind: tubular, volume: 0.3 L, to: b}\n  b: {kind: laminar, volume: 2 L, to: {a: 60 %, out: rest}}",
+    ],
+    [
+      "four, with dispersed flow and a cascade between",
+      "  a: {kind: tubular, volume: 0.3 L, to: b}\n  b: {kind: dispersed, volume: 2 L, peclet: 30, to: c}\n  c: {kind: tubular, volume: 0.5 L, to: {a: 30 %, d: rest}}\n  d: {kind: cascade, volume: 1 L, tanks: 2.3, to: {e: 50 %, f: rest}}\n  e: {kind: tubular, volume: 0.2 L, to: a}\n  f: {kind: tubular, volume: 0.7 L, to: {d: 40 %, out: rest}}",
+    ],
+  ])("%s", (_, body) => {
+    expect(compare(body)).toBeLessThan(1e-8);
+    expect(compare(body, "step")).toBeLessThan(1e-8);
+  });
+});
+
+test("a chain of tubes between tanks is read off exactly", () => {
+  const chain = Array.from({ length: 6 }, (_, i) => {
+    const next = i < 5 ? `a${i + 1}` : "out";
+    return `  a${i}: {kind: stirred, volume: 0.5 L, to: b${i}}\n  b${i}: {kind: tubular, volume: 0.${i + 1} L, to: ${next}}`;
+  }).join("\n");
+  expect(compare(chain.replace(/a0/g, "a"))).toBeLessThan(1e-9);
+});
