@@ -1,4 +1,5 @@
 import type { Plant } from "../compile/plant.js";
+import { chebyshev } from "../simulate/chebyshev.js";
 import { exact } from "../simulate/exact.js";
 import { laplace } from "../simulate/laplace.js";
 import { ode } from "../simulate/ode.js";
@@ -7,7 +8,7 @@ import type { SimulateOptions } from "./simulate-options.js";
 
 /** The engine by its name; `auto` is the one that suits the plant and the last time asked, s. */
 export function engineNamed(name: SimulateOptions["engine"], plant: Plant, until: number): AnyEngine {
-  const named = { auto: undefined, exact, ode, laplace }[name];
+  const named = { auto: undefined, exact, ode, laplace, chebyshev }[name];
   return named ?? engineFor(plant, until);
 }
 

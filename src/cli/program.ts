@@ -101,7 +101,9 @@ function addSimulate(root: Command, { perform, inputs, io }: Stage): void {
     .option("--points <n>", "points from 0 to the end", whole(2), undefined)
     .option("--times <list>", 'the times themselves, such as "0.5, 1, 2.5 min"')
     .addOption(
-      new Option("--engine <name>", "how to integrate").choices(["auto", "exact", "ode", "laplace"]).default("auto"),
+      new Option("--engine <name>", "how to integrate")
+        .choices(["auto", "exact", "ode", "laplace", "chebyshev"])
+        .default("auto"),
     )
     .option("--verify", "run a second engine and print the largest difference")
     .option("-o, --output <file>", "write the curves to F.csv");

@@ -8,7 +8,7 @@ export interface SimulateOptions extends TimeOptions {
   readonly duty?: string;
   readonly at?: readonly string[];
   readonly set?: readonly string[];
-  readonly engine: "auto" | "exact" | "ode" | "laplace";
+  readonly engine: "auto" | "exact" | "ode" | "laplace" | "chebyshev";
   readonly verify?: true;
   readonly output?: string;
 }

@@ -18,8 +18,9 @@ export interface NodeMoments {
  * Moments at every node from the Taylor series in s of the node equations, order by order: all terms of an order have one
  * sign, so that no digits cancel. What is infinite from some order on reaches only what lies behind it, from that order on.
  * @param entry node into which a unit of tracer is put
+ * @param nodes where they are wanted; default: everywhere
  */
-export function moments(plant: Plant, entry: number): NodeMoments[] {
+export function moments(plant: Plant, entry: number, nodes?: readonly number[]): NodeMoments[] {
   const { size, inflow } = plant.columns;
   const gains = gainColumns(plant);
   const equations = new SteadyEquations(plant);
@@ -30,7 +31,7 @@ export function moments(plant: Plant, entry: number): NodeMoments[] {
     for (let j = 1; j <= k; j++) addFinite(c, gains[j], entering[k - j]);
     const put = k === 0 && inflow[entry] > 0 ? 1 / inflow[entry] : 0;
     c[entry] += put;
-    if (!equations.solve(c)) return Array.from(c, () => momentsOf(0, 0, 0, 0, 0));
+    if (!equations.solve(c)) return Array.from(nodes ?? c, () => momentsOf(0, 0, 0, 0, 0));
     const mean = equations.entering(c);
     mean[entry] += put;
     leaving.push(c);
@@ -38,7 +39,11 @@ export function moments(plant: Plant, entry: number): NodeMoments[] {
   }
   const finite = finiteOrders(plant, gains, entering[0]);
   const [c0, c1, c2, c3] = leaving;
-  return Array.from(inflow, (q, i) => momentsOf(c0[i] * q, c1[i] * q, c2[i] * q, c3[i] * q, finite[i]));
+  const at = (i: number): NodeMoments => {
+    const q = inflow[i];
+    return momentsOf(c0[i] * q, c1[i] * q, c2[i] * q, c3[i] * q, finite[i]);
+  };
+  return nodes ? nodes.map(at) : Array.from(inflow, (_, i) => at(i));
 }
 
 /** c += gain x, where the gain is finite. */

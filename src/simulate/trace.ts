@@ -4,12 +4,14 @@ import { isClosed } from "../model/network.js";
 import type { Problem } from "../problems/problem.js";
 import { RefusedError } from "../problems/refused.js";
 import { problem } from "../problems/report.js";
+import { isCellsOnly } from "./cell-system.js";
+import { chebyshev } from "./chebyshev.js";
 import type { Entry } from "./entry.js";
 import { exact } from "./exact.js";
 import { laplace } from "./laplace.js";
 import type { TracerEngine } from "./linear-system.js";
 import { balanceAt, see } from "./respond.js";
-import type { TracerWay, Tracing } from "./tracing.js";
+import type { TracerWay, Tracing, WatchTracing } from "./tracing.js";
 import { unroll } from "./unroll.js";
 
 /** An engine of either sort: one that integrates what is left when tubes are unrolled, or one with a way of its own. */
@@ -18,15 +20,19 @@ export type AnyEngine = TracerEngine | TracerWay;
 /** Passes through tubes of a closed vessel that the exact engine follows one by one; beyond, laplace takes them together. */
 const fewPasses = 60;
 
+/** More nodes than these, and a series for large networks takes over. */
+const small = 400;
+
 /**
- * The exact engine for cells, tubes and junctions alone; laplace for plants with other bodies, and where tracer goes round
+ * The exact engine for cells, tubes and junctions alone, one for large networks where there are many; laplace for plants with other bodies, and where tracer goes round
  * and round a closed vessel.
  * @param horizon s; nothing later is asked
  */
-export const engineFor = (plant: Plant, horizon = 0): AnyEngine =>
-  plant.columns.part.includes(Part.Block) || (isClosed(plant) && passesIn(plant, horizon) > fewPasses)
-    ? laplace
-    : exact;
+export function engineFor(plant: Plant, horizon = 0): AnyEngine {
+  const { part, size } = plant.columns;
+  if (part.includes(Part.Block) || (isClosed(plant) && passesIn(plant, horizon) > fewPasses)) return laplace;
+  return size > small && isCellsOnly(plant) ? chebyshev : exact;
+}
 
 /** How often tracer may pass the shortest tube. */
 function passesIn({ columns: { size, part, volume, inflow } }: Plant, horizon: number): number {
@@ -37,7 +43,7 @@ function passesIn({ columns: { size, part, volume, inflow } }: Plant, horizon: n
 
 /** Why no engine follows tracer through a plant: too many nodes. */
 export const untraceable = (plant: Plant): Problem[] =>
-  uncarried(plant, engineFor(plant) === laplace ? "laplace" : "tracer");
+  engineFor(plant) === chebyshev ? [] : uncarried(plant, engineFor(plant) === laplace ? "laplace" : "tracer");
 
 /**
  * Follows tracer through a plant with an engine.
@@ -48,9 +54,10 @@ export function trace(
   entry: Entry,
   horizon: number,
   engine: AnyEngine = engineFor(plant, horizon),
+  watch?: WatchTracing,
 ): Tracing {
   const tracing =
-    "trace" in engine ? engine.trace(plant, entry, horizon) : unrolledTracing(plant, entry, horizon, engine);
+    "trace" in engine ? engine.trace(plant, entry, horizon, watch) : unrolledTracing(plant, entry, horizon, engine);
   // Elsewhere a pass that is given up carries next to nothing; in a closed vessel it carries what the first did.
   if (isClosed(plant) && tracing.truncated) throw new RefusedError([problem("too-many-passes", plant.network.at, {})]);
   return tracing;

@@ -25,6 +25,9 @@ export interface Tracing {
   readonly truncated: boolean;
 }
 
+/** Told now and then how much of the work is done; true ends it. */
+export type WatchTracing = (done: number, of: number) => boolean;
+
 /** A way to follow tracer through any plant that it carries. */
 export interface TracerWay {
   readonly name: string;
@@ -32,5 +35,5 @@ export interface TracerWay {
    * @param entry   where tracer is put in
    * @param horizon s; nothing later is asked
    */
-  trace(plant: Plant, entry: Entry, horizon: number): Tracing;
+  trace(plant: Plant, entry: Entry, horizon: number, watch?: WatchTracing): Tracing;
 }

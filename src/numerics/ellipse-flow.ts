@@ -1,0 +1,162 @@
+import { type Ellipse, type MixedRows, settle } from "./mixed-rows.js";
+
+/** What is looked at: a sum over the unknowns, of each polynomial's vector one number. */
+interface Look {
+  /** The unknown; -1: the sum over all states, each times its volume. */
+  readonly unknown: number;
+  /** Bound of the look over the norm of a vector. */
+  readonly norm: number;
+  scalars: Float64Array;
+}
+
+/** What a series leaves out, beside the scale of the sum. */
+const leftOut = 1e-12;
+/** Vectors made at a time. */
+const block = 16;
+
+/**
+ * The vectors p_k(A) x, k = 0, 1, ..., of the polynomials of an ellipse, made one after the other, as many as are asked for,
+ * by two vectors in turn; of each only what is looked at is kept. One pass over the matrix each; nothing allocated per pass.
+ */
+export class EllipseFlow {
+  /** Vectors made so far. */
+  made = 0;
+  private readonly looks: readonly Look[];
+  /** Root of the sum of volume times square, of the vectors after each block. */
+  private norms = new Float64Array(0);
+  private now: Float64Array;
+  private before: Float64Array;
+  private readonly scaled: Float64Array;
+
+  /**
+   * @param start    x, as long as the matrix
+   * @param unknowns to look at; the sum of all tracer is looked at besides, under their number
+   * @param volume   of each state
+   */
+  constructor(
+    private readonly rows: MixedRows,
+    private readonly ellipse: Ellipse,
+    start: Float64Array,
+    unknowns: readonly number[],
+    private readonly volume: Float64Array,
+  ) {
+    const { states, start: begin, column, value } = rows;
+    const { half: a, height: b } = ellipse;
+    this.scaled = value.slice();
+    for (let i = 0; i < states; i++) {
+      for (let e = begin[i]; e < begin[i + 1]; e++) {
+        this.scaled[e] = (2 / (a + b)) * (value[e] + (column[e] === i ? a : 0));
+      }
+    }
+    this.now = start.slice();
+    this.before = new Float64Array(start.length);
+    this.looks = [...unknowns, -1].map((unknown) => ({
+      unknown,
+      norm: boundOf(rows, unknown, volume),
+      scalars: new Float64Array(0),
+    }));
+  }
+
+  /**
+   * Sum of coefficients times the numbers of a look, vectors being made as they are wanted, until what is left counts no more.
+   * It depends on the coefficients alone, not on what was asked before.
+   * @param c      beyond their largest they fall
+   * @param scale  of the sum: it is good to 1e-12 of this
+   * @param largest is told the largest term
+   */
+  sum(look: number, c: Float64Array, scale: number, largest: { term: number } = { term: 0 }): number {
+    const of = this.looks[look];
+    let sum = 0;
+    for (let k = 0; k < c.length; k++) {
+      if (k === this.made) this.make();
+      const term = c[k] * of.scalars[k];
+      sum += term;
+      if (Math.abs(term) > largest.term) largest.term = Math.abs(term);
+      if (k % block !== block - 1) continue;
+      const bound = 2 * of.norm * this.norms[(k + 1) / block - 1];
+      const falling = Math.abs(c[k]) < 0.98 * Math.abs(c[k - 1]);
+      const rest = (Math.abs(c[k]) / (1 - Math.abs(c[k] / c[k - 1]))) * bound;
+      if (falling && rest < leftOut * scale) break;
+    }
+    return sum;
+  }
+
+  /** A block of vectors more. */
+  private make(): void {
+    const { rows, ellipse, volume } = this;
+    const back = (ellipse.half - ellipse.height) / (ellipse.half + ellipse.height);
+    if (this.made === this.norms.length) {
+      const most = Math.max(16 * block, 2 * this.made);
+      for (const look of this.looks) look.scalars = longer(look.scalars, most);
+      this.norms = longer(this.norms, most);
+    }
+    const end = this.made + block;
+    for (; this.made < end; this.made++) {
+      const k = this.made;
+      settle(rows, this.now);
+      for (const look of this.looks) if (look.unknown >= 0) look.scalars[k] = this.now[look.unknown];
+      const total = step(rows, this.scaled, this.now, this.before, k === 0 ? 0.5 : 1, k === 0 ? 0 : back, volume);
+      this.looks[this.looks.length - 1].scalars[k] = total;
+      [this.now, this.before] = [this.before, this.now];
+    }
+    // The last two, from which all that follow are made.
+    this.norms[end / block - 1] = Math.max(normOf(this.now, volume), normOf(this.before, volume));
+  }
+}
+
+/** Largest value of an unknown over the norm of the states that it is made of. */
+function boundOf(rows: MixedRows, unknown: number, volume: Float64Array): number {
+  const { states, start, column, value } = rows;
+  if (unknown < 0) return Math.sqrt(volume.reduce((s, v) => s + v, 0));
+  if (unknown < states && volume[unknown] > 1e-50) return 1 / Math.sqrt(volume[unknown]);
+  // A detector or joint: no more than what it is made of.
+  let square = 0;
+  for (let e = start[unknown]; e < start[unknown + 1]; e++) {
+    if (column[e] === unknown) continue;
+    const part = boundOf(rows, column[e], volume);
+    square += (unknown < states ? 1 : value[e] * value[e]) * part * part;
+  }
+  return Math.sqrt(square);
+}
+
+function longer(old: Float64Array, length: number): Float64Array<ArrayBuffer> {
+  const next = new Float64Array(length);
+  next.set(old);
+  return next;
+}
+
+/** before <- forward * (scaled now) - back * before; returns the sum of volume times now. Rows as lattices have them go at once. */
+function step(
+  { states, start, column: c }: MixedRows,
+  scaled: Float64Array,
+  now: Float64Array,
+  before: Float64Array,
+  forward: number,
+  back: number,
+  volume: Float64Array,
+): number {
+  let [e, total] = [0, 0];
+  for (let i = 0; i < states; i++) {
+    const end = start[i + 1];
+    let sum = 0;
+    if (end - e === 7) {
+      const one = scaled[e] * now[c[e]] + scaled[e + 1] * now[c[e + 1]] + scaled[e + 2] * now[c[e + 2]];
+      const two = scaled[e + 3] * now[c[e + 3]] + scaled[e + 4] * now[c[e + 4]];
+      sum = one + two + (scaled[e + 5] * now[c[e + 5]] + scaled[e + 6] * now[c[e + 6]]);
+      e = end;
+    } else {
+      for (; e + 1 < end; e += 2) sum += scaled[e] * now[c[e]] + scaled[e + 1] * now[c[e + 1]];
+      if (e < end) sum += scaled[e] * now[c[e++]];
+    }
+    total += volume[i] * now[i];
+    before[i] = forward * sum - back * before[i];
+  }
+  return total;
+}
+
+/** Root of the sum of volume times square. */
+function normOf(x: Float64Array, volume: Float64Array): number {
+  let square = 0;
+  for (let i = 0; i < volume.length; i++) square += volume[i] * x[i] * x[i];
+  return Math.sqrt(square);
+}

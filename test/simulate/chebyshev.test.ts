@@ -1,0 +1,115 @@
+import fc from "fast-check";
+import { describe, expect, test } from "vitest";
+import type { Plant } from "../../src/compile/plant.js";
+import { isCellsOnly } from "../../src/simulate/cell-system.js";
+import { chebyshev } from "../../src/simulate/chebyshev.js";
+import { exact } from "../../src/simulate/exact.js";
+import type { Drive } from "../../src/simulate/linear-system.js";
+import { trace } from "../../src/simulate/trace.js";
+import { tracerResponse } from "../../src/simulate/tracer.js";
+import { peakOf, plantOf } from "./plants.js";
+import { randomNetwork } from "./random-network.js";
+
+/** A random network of tanks and junctions alone. */
+const cellsOnly = (seed: number): Plant => plantOf(randomNetwork(seed).replaceAll("kind: tubular", "kind: stirred"));
+const span = (plant: Plant): number => (3 * plant.volume.active) / plant.feeds[0].flow;
+const grid = (end: number, n: number): Float64Array => Float64Array.from({ length: n }, (_, i) => (end * i) / (n - 1));
+
+describe("the series for large networks", () => {
+  test("agrees with the exact engine on any network of cells: curves, integrals, balance, inner places", () => {
+    let seen = 0;
+    fc.assert(
+      fc.property(fc.integer({ min: 1, max: 1e6 }), fc.constantFrom("pulse", "step"), (seed, form) => {
+        const plant = cellsOnly(seed);
+        if (!isCellsOnly(plant)) return;
+        seen++;
+        const times = grid(span(plant), 40);
+        const inner = plant.network.compartments.find((c) => c.name.startsWith("n"))?.name ?? "out";
+        const [a, b] = [exact, chebyshev].map((engine) =>
+          tracerResponse(plant, { at: "feed", form }, times, { engine, at: [inner] }),
+        );
+        a.readings.forEach((reading, r) => {
+          const peak = Math.max(peakOf(reading.value), 1e-6 / span(plant));
+          const sum = Math.max(peakOf(reading.cumulative), 1e-6);
+          for (let i = 0; i < times.length; i++) {
+            expect(Math.abs(reading.value[i] - b.readings[r].value[i])).toBeLessThan(1e-9 * peak);
+            expect(Math.abs(reading.cumulative[i] - b.readings[r].cumulative[i])).toBeLessThan(1e-9 * sum);
+          }
+          expect(b.readings[r].spikes).toHaveLength(reading.spikes.length);
+          b.readings[r].spikes.forEach(({ time, area }, k) => {
+            expect(time).toBe(reading.spikes[k].time);
+            expect(area).toBeCloseTo(reading.spikes[k].area, 14);
+          });
+        });
+        expect(b.balance.closure).toBeLessThan(1e-10);
+        expect(Math.abs(a.balance.inside - b.balance.inside)).toBeLessThan(1e-9 * a.balance.injected);
+      }),
+      { numRuns: 60, seed: 20261201 },
+    );
+    expect(seen).toBeGreaterThan(30);
+  });
+
+  test("follows any drive, and what slow detectors make of it", () => {
+    for (const seed of [2, 5, 9, 31]) {
+      const plant = cellsOnly(seed);
+      if (!isCellsOnly(plant)) continue;
+      const end = span(plant);
+      const drive: Drive = {
+        amount: 0.7,
+        times: Float64Array.of(0, end / 9, end / 3, end / 2),
+        level: Float64Array.of(1 / end, 0, 3 / end, 0),
+        slope: Float64Array.of(0, 4 / end ** 2, -6 / end ** 2, 0),
+      };
+      const entry = plant.entry.get("feed") as number;
+      const times = grid(end, 30);
+      const looks = plant.outlets.flatMap(({ node }) => [
+        { node, times, integral: true },
+        { node, times, lag: end / 40, integral: false },
+      ]);
+      const [a, b] = [exact, chebyshev].map((engine) => trace(plant, entry, end, engine).see(drive, looks).seen);
+      a.forEach((one, r) => {
+        const peak = peakOf(one.value);
+        for (let i = 0; i < times.length; i++) {
+          expect(Math.abs(one.value[i] - b[r].value[i])).toBeLessThan(1e-9 * peak);
+          if (looks[r].integral !== false)
+            expect(Math.abs(one.integral[i] - b[r].integral[i])).toBeLessThan(1e-9 * peak * end);
+        }
+      });
+    }
+  });
+
+  test("2,000 tanks in a row: the Erlang density, nearly all flow through and nothing exchanged", () => {
+    const n = 2000;
+    const plant = plantOf(`network: Row
+format: 1
+feeds: {feed: {flow: 1 L/s, to: row}}
+compartments: {row: {kind: stirred, repeat: ${n}, volume: 2000 L, to: out}}
+outlets: [out]
+`);
+    const times = grid(4000, 81);
+    const result = tracerResponse(plant, { at: "feed", form: "pulse" }, times);
+    expect(result.engine).toBe("chebyshev");
+    expect(result.stopped).toBeUndefined();
+    const { value } = result.readings[0];
+    let logFactorial = 0;
+    for (let k = 2; k < n; k++) logFactorial += Math.log(k);
+    const density = times.map((t) => (t > 0 ? Math.exp((n - 1) * Math.log(t) - t - logFactorial) : 0));
+    const peak = peakOf(density);
+    // The logarithms of the closed form itself are good to 1e-11.
+    times.forEach((_, i) => {
+      expect(Math.abs(value[i] - density[i])).toBeLessThan(1e-9 * peak);
+    });
+  });
+
+  test("a sample does not depend on the others asked, to the byte", () => {
+    const plant = cellsOnly(9);
+    const times = grid(span(plant), 50);
+    const by = (asked: Float64Array) =>
+      tracerResponse(plant, { at: "feed", form: "pulse" }, asked, { engine: chebyshev }).readings[0];
+    const all = by(times);
+    for (const i of [3, 17, 49]) {
+      expect(by(times.subarray(i, i + 1)).value[0]).toBe(all.value[i]);
+      expect(by(times.subarray(i, i + 1)).cumulative[0]).toBe(all.cumulative[i]);
+    }
+  });
+});
