@@ -1,14 +1,19 @@
 import type { Plant } from "../compile/plant.js";
+import { isCellsOnly } from "../simulate/cell-system.js";
 import { chebyshev } from "../simulate/chebyshev.js";
 import { exact } from "../simulate/exact.js";
 import { laplace } from "../simulate/laplace.js";
 import { ode } from "../simulate/ode.js";
 import { type AnyEngine, engineFor } from "../simulate/trace.js";
 import type { SimulateOptions } from "./simulate-options.js";
+import { UsageError } from "./usage.js";
 
 /** The engine by its name; `auto` is the one that suits the plant and the last time asked, s. */
 export function engineNamed(name: SimulateOptions["engine"], plant: Plant, until: number): AnyEngine {
   const named = { auto: undefined, exact, ode, laplace, chebyshev }[name];
+  if (named === chebyshev && !isCellsOnly(plant)) {
+    throw new UsageError("--engine chebyshev is for stirred bodies and junctions alone; auto takes one that suits");
+  }
   return named ?? engineFor(plant, until);
 }
 

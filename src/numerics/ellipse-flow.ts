@@ -22,7 +22,7 @@ export class EllipseFlow {
   /** Vectors made so far. */
   made = 0;
   private readonly looks: readonly Look[];
-  /** Root of the sum of volume times square, of the vectors after each block. */
+  /** Root of the sum of weight times square, of the vectors after each block. */
   private norms = new Float64Array(0);
   private now: Float64Array;
   private before: Float64Array;
@@ -32,6 +32,7 @@ export class EllipseFlow {
    * @param start    x, as long as the matrix
    * @param unknowns to look at; the sum of all tracer is looked at besides, under their number
    * @param volume   of each state
+   * @param weight   of each state in the norm by which it is told when to stop: its volume where it has one, above 0
    */
   constructor(
     private readonly rows: MixedRows,
@@ -39,6 +40,7 @@ export class EllipseFlow {
     start: Float64Array,
     unknowns: readonly number[],
     private readonly volume: Float64Array,
+    private readonly weight = volume,
   ) {
     const { states, start: begin, column, value } = rows;
     const { half: a, height: b } = ellipse;
@@ -52,7 +54,7 @@ export class EllipseFlow {
     this.before = new Float64Array(start.length);
     this.looks = [...unknowns, -1].map((unknown) => ({
       unknown,
-      norm: boundOf(rows, unknown, volume),
+      norm: unknown < 0 ? Math.sqrt(volume.reduce((sum, v) => sum + v, 0)) : boundOf(rows, unknown, weight),
       scalars: new Float64Array(0),
     }));
   }
@@ -83,7 +85,7 @@ export class EllipseFlow {
 
   /** A block of vectors more. */
   private make(): void {
-    const { rows, ellipse, volume } = this;
+    const { rows, ellipse, volume, weight } = this;
     const back = (ellipse.half - ellipse.height) / (ellipse.half + ellipse.height);
     if (this.made === this.norms.length) {
       const most = Math.max(16 * block, 2 * this.made);
@@ -100,22 +102,17 @@ export class EllipseFlow {
       [this.now, this.before] = [this.before, this.now];
     }
     // The last two, from which all that follow are made.
-    this.norms[end / block - 1] = Math.max(normOf(this.now, volume), normOf(this.before, volume));
+    this.norms[end / block - 1] = Math.max(normOf(this.now, weight), normOf(this.before, weight));
   }
 }
 
 /** Largest value of an unknown over the norm of the states that it is made of. */
-function boundOf(rows: MixedRows, unknown: number, volume: Float64Array): number {
+function boundOf(rows: MixedRows, unknown: number, weight: Float64Array): number {
   const { states, start, column, value } = rows;
-  if (unknown < 0) return Math.sqrt(volume.reduce((s, v) => s + v, 0));
-  if (unknown < states && volume[unknown] > 1e-50) return 1 / Math.sqrt(volume[unknown]);
-  // A detector or joint: no more than what it is made of.
+  if (unknown < states) return 1 / Math.sqrt(weight[unknown]);
   let square = 0;
-  for (let e = start[unknown]; e < start[unknown + 1]; e++) {
-    if (column[e] === unknown) continue;
-    const part = boundOf(rows, column[e], volume);
-    square += (unknown < states ? 1 : value[e] * value[e]) * part * part;
-  }
+  for (let e = start[unknown]; e < start[unknown + 1]; e++)
+    square += (value[e] * boundOf(rows, column[e], weight)) ** 2;
   return Math.sqrt(square);
 }
 
@@ -154,9 +151,9 @@ function step(
   return total;
 }
 
-/** Root of the sum of volume times square. */
-function normOf(x: Float64Array, volume: Float64Array): number {
+/** Root of the sum of weight times square. */
+function normOf(x: Float64Array, weight: Float64Array): number {
   let square = 0;
-  for (let i = 0; i < volume.length; i++) square += volume[i] * x[i] * x[i];
+  for (let i = 0; i < weight.length; i++) square += weight[i] * x[i] * x[i];
   return Math.sqrt(square);
 }

@@ -1,7 +1,7 @@
 import type { Ellipse } from "./mixed-rows.js";
 
-/** Terms below this are left out; the polynomials themselves stay near 1 on the ellipse. */
-const smallest = 1e-12;
+/** Terms below this are left out: what ends here disturbs every term of an integral, and more so of one integrated again. */
+const smallest = 1e-18;
 
 /**
  * exp(t z) and its integrals over t as series in the polynomials of an ellipse that touches 0 from the left: Chebyshev
@@ -24,7 +24,7 @@ export class EllipseSeries {
    */
   exponential(t: number): Float64Array {
     const { half: a, height: b } = this.ellipse;
-    const most = t > 0 ? Math.ceil(b * t + Math.sqrt(70 * a * t)) + 30 : 0;
+    const most = t > 0 ? Math.ceil(b * t + Math.sqrt(90 * a * t)) + 40 : 0;
     const c = this.buffer(0, most + 1);
     if (!(t > 0)) {
       c[0] = 1;

@@ -12,8 +12,10 @@ export interface CellSystem {
   readonly place: Int32Array;
   /** Detectors come after so many cells, in their order. */
   readonly cells: number;
-  /** Of each state, m3. */
+  /** Of each state, m3; detectors hold nothing. */
   readonly volume: Float64Array;
+  /** The same, detectors as large as a mean cell. */
+  readonly weight: Float64Array;
   /** 1/m3: concentrations that a unit put in all at once makes; 0 for joints. */
   readonly start: Float64Array;
   /** s/m3, by unknown: what of a unit put in all at once leaves a joint undispersed. */
@@ -49,12 +51,10 @@ export interface Detector {
   readonly lag: number;
 }
 
-/** Detectors hold next to nothing, m3. */
-const detectorVolume = 1e-100;
-
 /**
  * @param entry     where a unit of tracer is put in
  * @param detectors states of their own, after the cells
+ * @throws RangeError where `isCellsOnly` does not hold
  */
 export function cellSystem(plant: Plant, entry: Entry, detectors: readonly Detector[] = []): CellSystem {
   const { columns, from, to, flow } = plant;
@@ -64,11 +64,12 @@ export function cellSystem(plant: Plant, entry: Entry, detectors: readonly Detec
   for (let i = 0; i < size; i++) if (part[i] === Part.Cell) place[i] = states++;
   const cells = states;
   states += detectors.length;
-  const joints = jointsInOrder(plant) ?? [];
+  const joints = jointsInOrder(plant);
+  if (!joints || !isCellsOnly(plant)) throw new RangeError("a network of stirred cells and junctions alone is wanted");
   joints.forEach((node, j) => {
     place[node] = states + j;
   });
-  const volume = new Float64Array(states).fill(detectorVolume, cells);
+  const volume = new Float64Array(states);
   const over = new Float64Array(size); // what a link's flow is divided by where it ends
   for (let i = 0; i < size; i++) {
     const cell = part[i] === Part.Cell;
@@ -99,7 +100,8 @@ export function cellSystem(plant: Plant, entry: Entry, detectors: readonly Detec
     value.set([1 / lag, -1 / lag], at);
   });
   const rows = { ...gatherRows(size + detectors.length, row, column, value), states };
-  return { rows, place, volume, cells, ...entered(rows, place, volume, plant, entry) };
+  const weight = volume.slice().fill(plant.volume.active / cells, cells);
+  return { rows, place, volume, weight, cells, ...entered(rows, place, volume, plant, entry) };
 }
 
 /** What a unit put in all at once does to cells and joints. */

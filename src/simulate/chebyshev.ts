@@ -48,7 +48,7 @@ class SeriesTracing implements Tracing {
     private readonly detectors: readonly Detector[] = [],
   ) {
     this.system = cellSystem(plant, entry, detectors);
-    this.ellipse = ellipseOf(this.system.rows, this.system.volume);
+    this.ellipse = ellipseOf(this.system.rows, this.system.weight);
     this.series = new EllipseSeries(this.ellipse);
     this.most = passesFor(this.ellipse, horizon);
   }
@@ -114,10 +114,10 @@ class SeriesTracing implements Tracing {
   /** The series of vectors, at least at the given unknowns; the ellipse is made wider where digits were lost. */
   private follow(places: readonly number[]): { flow: EllipseFlow; stopped: string | undefined } {
     if (this.flow && places.every((p) => this.places.includes(p))) return { flow: this.flow, stopped: this.stopped };
-    const { rows, start, volume } = this.system;
+    const { rows, start, volume, weight } = this.system;
     this.places = places;
     for (let left = mostTries; ; left--) {
-      const flow = new EllipseFlow(rows, this.ellipse, start, places, volume);
+      const flow = new EllipseFlow(rows, this.ellipse, start, places, volume, weight);
       this.flow = flow;
       this.stopped = this.lost(flow) ? "the series for the large network has lost its digits" : undefined;
       if (!this.stopped || left === 0) return { flow, stopped: this.stopped };
