@@ -7,12 +7,14 @@ import { parseTrial } from "../parse/trial.js";
 import { collector } from "../problems/report.js";
 import { nearest } from "../text/nearest.js";
 import { formatNumber } from "../units/format.js";
+import { inUnit, type Unit } from "../units/unit.js";
 import type { Context } from "./context.js";
 import type { ExitStatus } from "./io.js";
 import { fitJson } from "./json/fit.js";
 import { InputError, type Outcome, UsageError } from "./outcome.js";
 import { progressOn } from "./progress.js";
 import { fitText } from "./text/fit.js";
+import { curvesOn } from "./text/plot.js";
 import { blocks } from "./text/table.js";
 import { writeFit } from "./write-fit.js";
 
@@ -52,7 +54,7 @@ export function fitCommand(file: string, options: FitOptions, { inputs, io }: Co
   const status = fitStatus === 0 && writing?.failed ? 1 : fitStatus;
   return {
     status,
-    text: blocks(fitText(network.title, outcome.fit), writing?.text),
+    text: blocks(fitText(network.title, outcome.fit), pictureOf(outcome.fit, network.units.time, io), writing?.text),
     json: {
       ok: status === 0,
       network: network.title,
@@ -63,6 +65,18 @@ export function fitCommand(file: string, options: FitOptions, { inputs, io }: Co
     notes: [...notesOf(outcome.fit, fitStatus), ...(writing?.notes ?? [])],
   };
 }
+
+/** The fitted curve of every reading, where somebody looks. */
+const pictureOf = ({ readings }: Fit, time: Unit, io: Context["io"]): string =>
+  curvesOn(io, () =>
+    readings.map((r) => ({
+      label: `fitted, ${r.key}`,
+      x: r.time.map((t) => inUnit(t - r.time[0], time)),
+      xUnit: time.name,
+      y: r.fitted.map((v) => inUnit(v, r.unit)),
+      yUnit: r.unit.name,
+    })),
+  );
 
 function requireParameters(network: Network, free: readonly string[]): void {
   const names = network.names.filter((n) => n.role === "parameter").map((n) => n.name);

@@ -1,6 +1,6 @@
 import { checkTrial } from "../check/trial.js";
 import { compile } from "../compile/compile.js";
-import { readMoments } from "../data/moments.js";
+import { type ReadingMoments, readMoments } from "../data/moments.js";
 import { settingsOfDay } from "../fit/settings.js";
 import type { Network } from "../model/network.js";
 import type { Tracer, Trial } from "../model/trial.js";
@@ -9,12 +9,15 @@ import { parseTrial } from "../parse/trial.js";
 import { collector } from "../problems/report.js";
 import { tracerPlant } from "../simulate/tracer-plant.js";
 import { placesOf } from "../study/trial-facts.js";
+import { inUnit } from "../units/unit.js";
 import type { Context } from "./context.js";
 import type { Inputs } from "./inputs.js";
 import { momentsResultJson } from "./json/moments.js";
 import { flowThrough, knownOnDay } from "./known.js";
 import type { Outcome } from "./outcome.js";
 import { momentsText } from "./text/moments.js";
+import { curvesOn, type TextCurve } from "./text/plot.js";
+import { blocks } from "./text/table.js";
 import { vesselOf } from "./vessel.js";
 
 export interface MomentsOptions {
@@ -22,7 +25,7 @@ export interface MomentsOptions {
 }
 
 /** `moments TRIAL`: the data alone; flow and volume come from the vessel where one is named. */
-export function moments(file: string, { vessel }: MomentsOptions, { inputs }: Context): Outcome {
+export function moments(file: string, { vessel }: MomentsOptions, { inputs, io }: Context): Outcome {
   const trial = inputs.document(file, parseTrial);
   const network = vesselFor(trial, vessel, inputs);
   const { plant } = network ? compile(network, settingsOfDay(network, trial, {})) : { plant: undefined };
@@ -40,10 +43,27 @@ export function moments(file: string, { vessel }: MomentsOptions, { inputs }: Co
   );
   return {
     status: 0,
-    text: momentsText(trial.title, result),
+    text: blocks(
+      momentsText(trial.title, result),
+      curvesOn(io, () => result.readings.flatMap(exitAge)),
+    ),
     json: { ok: true, trial: trial.title, ...momentsResultJson(result) },
   };
 }
+
+/** The curve as it was cleaned, of unit area. */
+const exitAge = ({ at, curve, timeUnit }: ReadingMoments): TextCurve[] =>
+  curve
+    ? [
+        {
+          label: `E at ${at}`,
+          x: curve.time.map((t) => inUnit(t, timeUnit)),
+          xUnit: timeUnit.name,
+          y: curve.E.map((v) => v * timeUnit.factor),
+          yUnit: `1/${timeUnit.name}`,
+        },
+      ]
+    : [];
 
 /** What the tracer sees as volume: a loss makes it no larger. */
 const heldBack = ({ tracer }: Trial): Tracer | undefined => tracer?.retained && { retained: tracer.retained };

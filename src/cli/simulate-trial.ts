@@ -20,6 +20,7 @@ import { type Outcome, UsageError } from "./outcome.js";
 import { plantAt } from "./plant.js";
 import { settingsFrom } from "./settings.js";
 import type { SimulateOptions } from "./simulate-options.js";
+import { curvesOn } from "./text/plot.js";
 import { blocks, table } from "./text/table.js";
 import { balanceLine, momentsTable } from "./text/tracer.js";
 import { type Clock, clockFrom } from "./times.js";
@@ -71,6 +72,15 @@ export function simulateTrial(network: Network, options: SimulateOptions, { inpu
     text: blocks(
       `${network.title}: ${trial.title}, ${clock.shown.length} times to ${formatNumber(clock.shown[clock.shown.length - 1])} ${clock.unit.name} after the ${starts.includes(origin) ? "injection" : "start"} (${engine.name})`,
       readingsTable(trial, curves, clock),
+      curvesOn(io, () =>
+        trial.readings.map((r, i) => ({
+          label: r.at,
+          x: clock.shown,
+          xUnit: clock.unit.name,
+          y: curves[i].map((v) => inUnit(v, r.unit)),
+          yUnit: r.unit.name,
+        })),
+      ),
       spikesText(trial, spikes, origin, clock),
       residenceText(plant, trial, clock),
       balance ? balanceLine(balance.balance, balance.unit) : "",

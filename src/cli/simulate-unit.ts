@@ -11,6 +11,7 @@ import { type Outcome, UsageError } from "./outcome.js";
 import { plantAt } from "./plant.js";
 import { requirePlace, settingsFrom } from "./settings.js";
 import type { SimulateOptions } from "./simulate-options.js";
+import { curvesOn } from "./text/plot.js";
 import { blocks } from "./text/table.js";
 import { balanceLine, momentsTable, spikesText } from "./text/tracer.js";
 import { clockFrom } from "./times.js";
@@ -61,6 +62,15 @@ export function simulateUnit(network: Network, options: SimulateOptions, { io }:
     text: blocks(
       `${network.title}: a unit ${form} into ${into}, ${clock.shown.length} times to ${formatNumber(last)} ${clock.unit.name} (${result.engine})`,
       closed ? noMean : momentsTable(result.readings, clock.unit),
+      curvesOn(io, () =>
+        result.readings.map((r) => ({
+          label: r.at,
+          x: clock.shown,
+          xUnit: clock.unit.name,
+          y: r.value.map((v) => inUnit(v, valueUnit)),
+          yUnit: valueUnit.name,
+        })),
+      ),
       spikesText(result.readings, clock.unit, areaUnit),
       balanceLine(result.balance, balanceUnit(form, clock.unit)),
       peaks(result.readings, clock.shown, valueUnit.factor, valueUnit.name, clock.unit.name),

@@ -16,13 +16,15 @@ export interface Surroundings {
   /** Files by path, before those of the repository; `-` is standard input; undefined: not there. */
   readonly files?: Readonly<Record<string, string | Uint8Array | undefined>>;
   readonly isTerminal?: boolean;
+  /** Is standard output a terminal that wants colour? */
+  readonly colour?: boolean;
   readonly cancelled?: () => boolean;
 }
 
 /** Runs a command line in this process, in the root of the repository, writing nothing. */
 export async function backmix(
   args: readonly string[],
-  { files = {}, isTerminal = false, cancelled }: Surroundings = {},
+  { files = {}, isTerminal = false, colour = false, cancelled }: Surroundings = {},
 ): Promise<Ran> {
   let out = "";
   let err = "";
@@ -48,7 +50,7 @@ export async function backmix(
       err += text;
     },
     isTerminal,
-    colour: { out: false, err: false },
+    colour: { out: colour, err: false },
     cancelled: cancelled ?? (() => false),
   });
   return { status, out, err, written };
