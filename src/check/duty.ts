@@ -1,5 +1,5 @@
 import type { Duty } from "../model/duty.js";
-import { isClosed, type Network } from "../model/network.js";
+import { followedIn, isClosed, type Network } from "../model/network.js";
 import type { Report } from "../problems/report.js";
 import { nearest } from "../text/nearest.js";
 import type { Span } from "../text/source.js";
@@ -11,6 +11,13 @@ export function checkDuty(network: Network, duty: Duty, report: Report): void {
   if (isClosed(network)) {
     report("not-yet", duty.at, { what: `a duty in a closed vessel, which is a batch,` });
     return;
+  }
+  const species = new Set([
+    ...(duty.chemistry?.species.map((s) => s.name) ?? []),
+    ...[...duty.feeds.values()].flatMap((f) => [...f.species.keys()]),
+  ]);
+  for (const of of followedIn(network).filter((name) => species.has(name))) {
+    report("not-yet", duty.at, { what: `'${of}' in a duty, which the network \`sends\` otherwise than the liquid,` });
   }
   const { feeds, outlets, left } = placeNames(network);
   const look = (name: string, at: Span, wanted: string, among: readonly string[]): boolean => {

@@ -34,7 +34,10 @@ export const finiteValues: Rule = (network, report, { env }) => {
     for (const e of c.exchanges) look(`the flow between '${c.name}' and '${e.partner}'`, e.flow);
   }
   for (const node of [...network.feeds, ...network.compartments]) {
-    for (const { split, to } of node.streams) {
+    for (const { split, to, carries } of node.streams) {
+      for (const [of, part] of carries ?? []) {
+        if (part !== "rest") look(`the share of '${of}' from '${node.name}' to '${to}'`, part);
+      }
       if ("value" in split) look(`the ${split.is} from '${node.name}' to '${to}'`, split.value);
     }
   }

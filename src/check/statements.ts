@@ -1,5 +1,6 @@
 import { memberOf } from "../model/members.js";
 import { isClosed } from "../model/network.js";
+import { followsKnown } from "./follows.js";
 import type { Rule } from "./rule.js";
 
 /** What `checks:` speak of is there. */
@@ -18,7 +19,8 @@ export const checkSubjects: Rule = (network, report, { nearest }) => {
       ]),
     },
   };
-  for (const { what, of, ofAt } of network.checks) {
+  for (const { what, of, ofAt, follows } of network.checks) {
+    if (follows) followsKnown(network, follows, report);
     if (what === "mean-time" && isClosed(network)) {
       report("closed-mean-time", ofAt, {});
       continue;

@@ -6,6 +6,7 @@ import type { Report } from "../problems/report.js";
 import { nearest } from "../text/nearest.js";
 import { siUnit } from "../units/describe.js";
 import { type Dimension, dimensions, isRatio, over, sameDimension } from "../units/dimension.js";
+import { followsKnown } from "./follows.js";
 import { isCell, placeNames } from "./places.js";
 import { sameKind } from "./same-kind.js";
 
@@ -34,6 +35,7 @@ function checkPlaces(network: Network, trial: Trial, report: Report): void {
   for (const { at, where } of trial.injections) {
     look(at, where, "feed or compartment", [...feeds, ...entered]);
   }
+  if (trial.tracer?.follows) followsKnown(network, trial.tracer.follows, report);
   const closed = isClosed(network);
   for (const { at, where, form } of trial.injections) {
     const dosed = form.is === "pulse" || (form.is === "step" && !form.from && form.level.dimension[0] !== -3);

@@ -1,5 +1,6 @@
 import { checkTrial } from "../check/trial.js";
 import { compile } from "../compile/compile.js";
+import { plantFollowing } from "../compile/sends.js";
 import { type ReadingMoments, readMoments } from "../data/moments.js";
 import { settingsOfDay } from "../fit/settings.js";
 import type { Network } from "../model/network.js";
@@ -36,7 +37,7 @@ export function moments(file: string, { vessel }: MomentsOptions, { inputs, io }
           flowAt: (at) => knownOnDay(network, trial, (plant) => flowThrough(plant, at)),
           volume: knownOnDay(network, trial, (plant) => tracerPlant(plant, heldBack(trial)).volume.total),
           throughflow: knownOnDay(network, trial, (plant) => vesselOf(plant).feed),
-          ...(plant ? placesOf(plant) : {}),
+          ...(plant ? placesOf(plantFollowing(plant, trial.tracer?.follows?.of)) : {}),
           ...(trial.clock ? { timeUnit: network.units.time } : {}),
         }
       : {},

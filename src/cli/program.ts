@@ -97,6 +97,10 @@ function addSimulate(root: Command, { perform, inputs, io }: Stage): void {
     .option("--duty <file>", "the steady state of a duty, with its report")
     .option("--at <names>", "inner places to look at besides the outlets; repeatable", collectNames)
     .option("--set <name=value>", "another value of a parameter, constant or feed.flow; repeatable", collect)
+    .option(
+      "--follows <name>",
+      "with --pulse and --step: a substance that the network `sends` otherwise than the liquid",
+    )
     .option("--until <time>", 'end of the curve, such as "6 h"')
     .option("--points <n>", "points from 0 to the end", whole(2), undefined)
     .option("--times <list>", 'the times themselves, such as "0.5, 1, 2.5 min"')

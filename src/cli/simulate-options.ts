@@ -7,6 +7,7 @@ export interface SimulateOptions extends TimeOptions {
   readonly trial?: string;
   readonly duty?: string;
   readonly at?: readonly string[];
+  readonly follows?: string;
   readonly set?: readonly string[];
   readonly engine: "auto" | "exact" | "ode" | "laplace" | "chebyshev";
   readonly verify?: true;

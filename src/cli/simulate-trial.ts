@@ -1,5 +1,6 @@
 import { checkTrial } from "../check/trial.js";
 import type { Plant } from "../compile/plant.js";
+import { plantFollowing } from "../compile/sends.js";
 import { productUnit } from "../data/clean.js";
 import { settingsOfDay } from "../fit/settings.js";
 import { isClosed, type Network } from "../model/network.js";
@@ -29,12 +30,14 @@ import { type TrialSpike, trialSpikes } from "./trial-spikes.js";
 
 /** `simulate --trial`: what every probe of a trial would read. Times count from the first injection. */
 export function simulateTrial(network: Network, options: SimulateOptions, { inputs, io }: Context): Outcome {
+  if (options.follows) throw new UsageError("--follows is for --pulse and --step; a trial says itself what it follows");
   if (options.at) throw new UsageError("--at is for --pulse and --step; a trial says itself where it reads");
   const trial = inputs.document(options.trial ?? "", parseTrial);
   const { report, problems } = collector();
   checkTrial(network, trial, report);
   inputs.accept(problems);
-  const plant = plantAt(network, settingsOfDay(network, trial, settingsFrom(network, options.set)));
+  const liquid = plantAt(network, settingsOfDay(network, trial, settingsFrom(network, options.set)));
+  const plant = plantFollowing(liquid, trial.tracer?.follows?.of);
   const starts = trial.injections.map((i) => i.start);
   const origin = Math.min(...starts, ...(trial.contents ? [trial.contents.begins] : []));
   const clock = clockFrom(options, network.units.time, () => lastTime(plant, trial, origin));

@@ -1,4 +1,5 @@
-import { isClosed, type Network } from "../model/network.js";
+import { plantFollowing } from "../compile/sends.js";
+import { followedIn, isClosed, type Network } from "../model/network.js";
 import { settlingTime, tracerResponse } from "../simulate/tracer.js";
 import { formatNumber, formatQuantity } from "../units/format.js";
 import { inUnit } from "../units/unit.js";
@@ -21,7 +22,13 @@ import { balanceUnit, perUnit, pureNumber } from "./units.js";
 export function simulateUnit(network: Network, options: SimulateOptions, { io }: Context): Outcome {
   const form = options.pulse === undefined ? "step" : "pulse";
   const into = options.pulse ?? options.step ?? "";
-  const plant = plantAt(network, settingsFrom(network, options.set));
+  if (options.follows !== undefined && !followedIn(network).includes(options.follows)) {
+    const known = followedIn(network);
+    throw new UsageError(
+      `--follows: no \`sends\` of the network names '${options.follows}'${known.length > 0 ? `; there are ${known.join(", ")}` : ""}`,
+    );
+  }
+  const plant = plantFollowing(plantAt(network, settingsFrom(network, options.set)), options.follows);
   requirePlace(into, plant.entry, `--${form}`);
   for (const name of options.at ?? []) requirePlace(name, plant.exit, "--at");
   const closed = isClosed(plant);
@@ -60,7 +67,7 @@ export function simulateUnit(network: Network, options: SimulateOptions, { io }:
   return {
     status: result.stopped || other?.stopped ? 3 : 0,
     text: blocks(
-      `${network.title}: a unit ${form} into ${into}, ${clock.shown.length} times to ${formatNumber(last)} ${clock.unit.name} (${result.engine})`,
+      `${network.title}: a unit ${form} ${options.follows === undefined ? "" : `of ${options.follows} `}into ${into}, ${clock.shown.length} times to ${formatNumber(last)} ${clock.unit.name} (${result.engine})`,
       closed ? noMean : momentsTable(result.readings, clock.unit),
       curvesOn(io, () =>
         result.readings.map((r) => ({

@@ -8,6 +8,7 @@ export const junction: CompartmentKind = {
   keys: {},
   flows: true,
   exchanges: false,
+  sends: true,
   mayExchange: () => false,
   volume: () => 0,
   spell(maker): Ports {

@@ -29,6 +29,8 @@ export interface CompartmentKind {
   /** May any of this kind have `exchange:`, and may this very one? */
   readonly exchanges: boolean;
   readonly mayExchange: (counts: Readonly<Record<string, number>>) => boolean;
+  /** May a species divide otherwise than the liquid where its outflow splits? */
+  readonly sends?: true;
   /** Are its cells and flows read from tables? */
   readonly zoned?: true;
   /** Is it a document of its own, placed here? It is resolved into the bodies that it has, so that no engine meets it. */

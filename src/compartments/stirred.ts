@@ -35,6 +35,7 @@ export const stirred: CompartmentKind = {
   },
   flows: true,
   exchanges: true,
+  sends: true,
   mayExchange: (counts) => (counts.repeat ?? 1) === 1,
   volume: (of) => of.values.volume + heldIn(of),
   spell(maker, of): Ports {

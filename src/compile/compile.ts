@@ -1,5 +1,5 @@
 import { memberOf } from "../model/members.js";
-import { isClosed, type Network } from "../model/network.js";
+import { followedIn, isClosed, type Network } from "../model/network.js";
 import type { Value } from "../model/value.js";
 import { backEdges } from "../numerics/graph.js";
 import type { Problem } from "../problems/problem.js";
@@ -11,6 +11,7 @@ import { balanceFlows, type FlowPlan, type Flows, flowPlan, solveFlows } from ".
 import type { Plant, PlantStream, Settings } from "./plant.js";
 import { valuesInRange, volumesOf } from "./ranges.js";
 import type { Say } from "./say.js";
+import { carriedFlows, sendsPossible } from "./sends.js";
 import { spellOut } from "./spell.js";
 import { Structure } from "./structure.js";
 
@@ -118,6 +119,7 @@ function balance(network: Network, settings: Settings, plan?: FlowPlan) {
   const volumes = volumesOf(network, env, report, say);
   const flows = balanceFlows(network, env, report, say, plan);
   valuesInRange(network, env, report, say);
+  sendsPossible(network, env, flows?.streams, report, say);
   return { env, volumes, flows, problems };
 }
 
@@ -163,6 +165,9 @@ function plantOf(
     from,
     to,
     flow,
+    ...(followedIn(network).length > 0
+      ? { carried: carriedFlows(network, env, flows.streams, flow, spelled.firstStream) }
+      : {}),
     feeds: network.feeds.map((f, i) => ({ name: f.name, node: i, flow: flows.through[i] })),
     outlets: network.outlets.map((o, i) => ({
       name: o.name,

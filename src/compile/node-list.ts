@@ -110,6 +110,10 @@ export class LinkList {
     this.flows.set(flow, first);
   }
 
+  get count(): number {
+    return this.size;
+  }
+
   get columns(): { from: Int32Array; to: Int32Array; flow: Float64Array } {
     const [from, to] = this.ends;
     return { from: from.slice(0, this.size), to: to.slice(0, this.size), flow: this.flows.slice(0, this.size) };

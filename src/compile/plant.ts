@@ -20,6 +20,10 @@ export interface Plant {
   readonly from: Int32Array;
   readonly to: Int32Array;
   readonly flow: Float64Array;
+  /** By substance that divides otherwise than the liquid, what its links carry, m3/s; see `plantFollowing`. */
+  readonly carried?: ReadonlyMap<string, Float64Array>;
+  /** The substance whose `carried` stands for `flow`: what links bring to a node is then no longer its inflow. */
+  readonly follows?: string | undefined;
   readonly feeds: readonly { readonly name: string; readonly node: number; readonly flow: number }[];
   readonly outlets: readonly { readonly name: string; readonly node: number; readonly flow: number }[];
   /** name in the file (compartment, feed, outlet, `chain.2`) -> node whose outflow it stands for, and where it is entered. */

@@ -11,6 +11,8 @@ export interface Spelled {
   readonly from: Int32Array;
   readonly to: Int32Array;
   readonly flow: Float64Array;
+  /** The link of the first stream; the others follow in file order. */
+  readonly firstStream: number;
   readonly entry: ReadonlyMap<string, number>;
   readonly exit: ReadonlyMap<string, number>;
 }
@@ -63,6 +65,7 @@ export function spellOut(network: Network, env: Float64Array, flows: Flows): Spe
   for (const o of network.outlets) joint(o.name);
   const names = [...network.feeds, ...network.compartments, ...network.outlets].map((p) => p.name);
   const port = (name: string, terminal: string | undefined) => (terminal === undefined ? name : `${name}.${terminal}`);
+  const firstStream = links.count;
   for (const { from, to, flow, stream } of flows.streams) {
     const a = exit.get(port(names[from], stream.leaves)) as number;
     link(a, entry.get(port(names[to], stream.enters)) as number, flow);
@@ -77,7 +80,7 @@ export function spellOut(network: Network, env: Float64Array, flows: Flows): Spe
     if (inlets.length === 1 && way !== undefined) entry.set(name, way);
     if (outlets.length === 1 && out !== undefined) exit.set(name, out);
   }
-  return { nodes, ...links.columns, entry, exit };
+  return { nodes, ...links.columns, firstStream, entry, exit };
 }
 
 /** By place, what streams bring to each member of a body where one of them enters past the first. */

@@ -114,8 +114,12 @@ export function readCurve(
     );
   if (recovery.value === undefined) notSupported.push(`recovery at '${curve.at}': ${whyNoRecovery(reading, flow)}`);
 
-  const tau = alone ? tauOf(options, flow) : undefined;
-  if (!alone)
+  const tau = alone && !options.follows ? tauOf(options, flow) : undefined;
+  if (options.follows)
+    notSupported.push(
+      `effective volume, holdback, segregation and dead volume at '${curve.at}': the tracer divides as '${options.follows}' does, not as the liquid`,
+    );
+  else if (!alone)
     notSupported.push(
       `effective volume, holdback, segregation and dead volume at '${curve.at}': ${way.isOutlet ? `liquid leaves by ${way.others.join(", ")}, too` : mixed ? "it is a mix of several places" : "it is not the outlet of the vessel"}`,
     );

@@ -22,6 +22,8 @@ export interface MomentsOptions {
   readonly feeds?: ReadonlyMap<string, number>;
   /** The vessel has neither feeds nor outlets. */
   readonly closed?: boolean;
+  /** The tracer divides as this substance does, not as the liquid: its mean time is not volume over flow. */
+  readonly follows?: string;
   readonly rule?: Rule;
   /** The unit that times are shown in; that of the reading's own where left out. */
   readonly timeUnit?: Unit;

@@ -71,6 +71,15 @@ export function streamKeys(streams: readonly Stream[], env: ArrayLike<number>, t
   );
 }
 
+/** The shares of a substance that divides otherwise than the liquid, by destination; none of it is no share. */
+export function carriedKeys(streams: readonly Stream[], of: string, env: ArrayLike<number>, t: Translate): string[] {
+  return streams.flatMap(({ to, enters, carries }) => {
+    const part = carries?.get(of);
+    if (part === undefined) return [];
+    return [`${whole(t, to, enters)} ${part === "rest" ? part : valueKey(part, env, t)}`];
+  });
+}
+
 /** A place to the point, where a body has several ways in: `chain.3`. */
 const whole = (t: Translate, to: string, enters: string | undefined): string =>
   enters === undefined ? t.place(to) : `${t.place(to)}.${enters}`;

@@ -12,10 +12,10 @@ import {
   written,
 } from "./compare.js";
 import type { Difference } from "./difference.js";
-import { exchangesOf, streamKeys, type Translate, valueKey, wordsOf } from "./keys.js";
+import { carriedKeys, exchangesOf, streamKeys, type Translate, valueKey, wordsOf } from "./keys.js";
 import { type Matching, matchNames, type Side } from "./match.js";
 import { collapseParts } from "./parts.js";
-import { places, type Streams, streamWords, type Told, valueWords } from "./words.js";
+import { carriedWords, places, type Streams, streamWords, type Told, valueWords } from "./words.js";
 
 /** What two networks differ in, in the order of a file, and which of their names are the same. */
 export interface NetworkDiff {
@@ -117,7 +117,19 @@ function bodyChanges(x: Compartment, y: Compartment, a: Read, b: Read): Change[]
   const others = keysOf(p, q).flatMap((key) =>
     p[key] === q[key] ? [] : [change(key, String(p[key] ?? "none"), String(q[key] ?? "none"), x.at, y.at)],
   );
-  return [...kind, ...values, ...others];
+  return [...kind, ...values, ...others, ...sendsChanges(x, y, a, b)];
+}
+
+/** Substances that divide otherwise than the liquid: the shares of the streams, in any order. */
+function sendsChanges(x: Compartment, y: Compartment, a: Read, b: Read): Change[] {
+  const ofs = [...new Set([...(x.sends ?? []), ...(y.sends ?? [])].map((s) => s.of))];
+  return ofs.flatMap((of): Change[] => {
+    const key = ({ streams }: Compartment, { env, t }: Read): string =>
+      JSON.stringify([...carriedKeys(streams, of, env, t)].sort());
+    if (key(x, a) === key(y, b)) return [];
+    const at = (c: Compartment) => c.sends?.find((s) => s.of === of)?.at ?? c.at;
+    return [change(`sends ${of}`, carriedWords(x.streams, of), carriedWords(y.streams, of), at(x), at(y))];
+  });
 }
 
 const keysOf = (x: object, y: object): string[] => [...new Set([...Object.keys(x), ...Object.keys(y)])];

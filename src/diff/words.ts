@@ -44,6 +44,15 @@ export function places(streams: readonly Stream[]): string {
   return `{${streams.map((s) => `${end(s)}: ${share(s)}`).join(", ")}}`;
 }
 
+/** The shares of a substance as written: `{sludge: 98 %, effluent: rest}`. */
+export function carriedWords(streams: readonly Stream[], of: string): string {
+  const parts = streams.flatMap(({ to, carries }) => {
+    const part = carries?.get(of);
+    return part === undefined ? [] : [`${to}: ${part === "rest" ? part : written(part.at)}`];
+  });
+  return parts.length > 0 ? `{${parts.join(", ")}}` : "as the liquid";
+}
+
 function firstUnlike<T>(a: Told<T>, b: Told<T>, ways: readonly ((told: Told<T>) => string)[]): [string, string] {
   const said = ways.map((say): [string, string] => [say(a), say(b)]);
   return said.find(([x, y]) => x !== y) ?? said[0];

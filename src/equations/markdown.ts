@@ -1,4 +1,5 @@
 import type { Plant } from "../compile/plant.js";
+import { partingsOf } from "../compile/sends.js";
 import { isClosed } from "../model/network.js";
 import type { Value } from "../model/value.js";
 import { dimensions } from "../units/dimension.js";
@@ -25,6 +26,7 @@ export function equationsMarkdown(plant: Plant, balances: readonly Balance[] = b
     ...section("Plug flow: delays", ...of("delay").map(write)),
     ...section("Bodies with a residence-time curve of their own", ...of("body").map(write)),
     ...section("Meeting streams and outlets", ...of("joint").map(write)),
+    ...section("Substances that divide otherwise than the liquid", partingsTable(plant)),
     ...section("Total balances", totals(plant, balances)),
   ].join("\n\n");
 }
@@ -162,6 +164,20 @@ function bodiesTable(plant: Plant): string {
   ]);
   const whole = [math("V"), say(total.total), total.dead > 0 ? `${say(total.dead)} of it dead` : "all", ""];
   return table(["symbol", "value", "kind", "line"], [...bodies, whole]);
+}
+
+/** The flows that carry a substance in place of those of the liquid, where `sends` divides it. */
+function partingsTable(plant: Plant): string {
+  const at = locator(plant);
+  const place = (name: string) => plant.network.compartments.find((c) => c.name === name) ?? plant.network;
+  const rows = partingsOf(plant).map(({ of, from, to, share }) => [
+    inText(of),
+    math(`${streamFlow(from, to)} \\mapsto ${formatNumber(share, 6)}\\, ${throughFlow(from)}`),
+    at(whereOf(place(from).at)),
+  ]);
+  return rows.length === 0
+    ? ""
+    : `For these, what leaves a place by a stream is this flow times the concentration there; in all balances above it stands for the liquid's.\n\n${table(["substance", "flow", "line"], rows)}`;
 }
 
 const equation =

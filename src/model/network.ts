@@ -31,6 +31,11 @@ export interface Network {
 export const isClosed = ({ feeds, outlets }: { feeds: readonly unknown[]; outlets: readonly unknown[] }): boolean =>
   feeds.length === 0 && outlets.length === 0;
 
+/** Substances that divide somewhere otherwise than the liquid, in file order. */
+export const followedIn = ({ compartments }: Pick<Network, "compartments">): string[] => [
+  ...new Set(compartments.flatMap((c) => (c.sends ?? []).map((s) => s.of))),
+];
+
 /** A name that has a value. `slot` is its index in `Network.names` and in an Env. */
 export interface Named {
   readonly name: string;
@@ -68,6 +73,8 @@ export interface Compartment {
   readonly streams: readonly Stream[];
   readonly exchanges: readonly Exchange[];
   readonly toAt: Span;
+  /** Substances that divide otherwise than the liquid where its streams part: named, and where. */
+  readonly sends?: readonly { readonly of: string; readonly at: Span }[];
 }
 
 export interface Outlet {
@@ -94,6 +101,8 @@ export interface Stream {
   readonly to: string;
   readonly at: Span;
   readonly split: { readonly is: "share" | "flow"; readonly value: Value } | { readonly is: "rest" | "all" };
+  /** Of substances that divide otherwise than the liquid where this stream leaves, the share that it takes; none given is none. */
+  readonly carries?: ReadonlyMap<string, Value | "rest">;
   /** The inlet, or the member of a repeat, by which it enters a body that has several, and the outlet by which it leaves one. */
   readonly enters?: string | undefined;
   readonly leaves?: string | undefined;
@@ -124,6 +133,8 @@ export interface Check {
   readonly what: "mean-time" | "volume" | "flow";
   readonly of: string;
   readonly ofAt: Span;
+  /** The substance whose mean time is meant; undefined: the liquid. */
+  readonly follows?: { readonly of: string; readonly at: Span } | undefined;
   readonly equals: Value;
   /** Relative to `equals`. */
   readonly within: number;

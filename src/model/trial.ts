@@ -55,6 +55,8 @@ export interface Injection {
 
 /** What the tracer does that the liquid does not. */
 export interface Tracer {
+  /** The substance of the network that it divides with where streams part; undefined where it divides as the liquid does. */
+  readonly follows?: { readonly of: string; readonly at: Span };
   /** Radioactive decay, 1/s: amounts are those at the start of their injection. */
   readonly decay?: number;
   /** Loss of first order in the vessel, 1/s. */

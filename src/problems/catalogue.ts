@@ -9,6 +9,7 @@ import { runEntries } from "./catalogue/runs.js";
 import { shapeEntries } from "./catalogue/shape.js";
 import { studyEntries } from "./catalogue/study.js";
 import { valueEntries } from "./catalogue/values.js";
+import { vesselTrialEntries } from "./catalogue/vessel-trials.js";
 import { yamlEntries } from "./catalogue/yaml.js";
 import { zoneEntries } from "./catalogue/zones.js";
 
@@ -23,6 +24,7 @@ export const catalogueGroups = {
   "Parts and variants": reuseEntries,
   "Trials and their tables": dataEntries,
   Detectors: detectorEntries,
+  "Trials and the vessel that was tested": vesselTrialEntries,
   "Chemistries and duties": chemistryEntries,
   "Fits: before they run, and what to know of their results": runEntries,
   Studies: studyEntries,
@@ -40,6 +42,7 @@ export const catalogue = {
   ...reuseEntries,
   ...dataEntries,
   ...detectorEntries,
+  ...vesselTrialEntries,
   ...chemistryEntries,
   ...runEntries,
   ...studyEntries,

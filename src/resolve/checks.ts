@@ -23,8 +23,10 @@ export function resolveChecks(
     const equals = resolveValue(child(item, "equals"), subjects[what as keyof typeof subjects], scope, report);
     const written = child(item, "within");
     const within = written ? resolveValue(written, dimensions.ratio, emptyScope, report)?.of([]) : usualWithin;
+    const substance = child(item, "follows");
+    const follows = substance?.type === "scalar" ? { of: substance.text, at: substance.at } : undefined;
     const sound = { equals: equals ?? unknownValue(item.at), within: within ?? usualWithin };
-    return [{ at: item.at, what: what as keyof typeof subjects, of: of.text, ofAt: of.at, ...sound }];
+    return [{ at: item.at, what: what as keyof typeof subjects, of: of.text, ofAt: of.at, follows, ...sound }];
   });
   return { checks, checkNames: checks.flatMap((c) => c.equals.uses) };
 }

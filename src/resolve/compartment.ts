@@ -8,6 +8,7 @@ import type { KeyShape } from "../schema/shape.js";
 import { nearest } from "../text/nearest.js";
 import type { Span } from "../text/source.js";
 import { dimensionsOf } from "./names.js";
+import { resolveSends } from "./sends.js";
 import { resolveExchanges, resolveStreams } from "./streams.js";
 import { unknownBody, unknownValue } from "./unknown.js";
 import { resolveValue, type Scope } from "./value.js";
@@ -33,13 +34,15 @@ export function resolveCompartment(
   const zones = kind.zoned && resolveZones(name, at, node, tolerance, files, report);
   if (kind.zoned && !zones) return unknownBody(name, at, node);
   const streams = kind.zoned ? [] : resolveStreams(child(node, "to"), scope, report);
+  const sent = kind.sends ? resolveSends(name, child(node, "sends"), streams, scope, report) : { streams };
   return {
     name,
     at,
     kind,
     ...keys,
     zones: zones || undefined,
-    streams: zones ? zoneStreams(name, child(node, "to"), zones, report) : streams,
+    ...sent,
+    ...(zones ? { streams: zoneStreams(name, child(node, "to"), zones, report) } : {}),
     exchanges: resolveExchanges(child(node, "exchange"), scope, report),
     toAt: child(node, "to")?.at ?? at,
   };

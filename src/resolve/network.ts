@@ -84,5 +84,6 @@ function valuesOf(feeds: readonly Feed[], named: readonly Value[], compartments:
     ...compartments.flatMap((c) => Object.values(c.values)),
     ...compartments.flatMap((c) => c.exchanges.map((e) => e.flow)),
     ...streams.flatMap((s) => ("value" in s.split ? [s.split.value] : [])),
+    ...streams.flatMap((s) => [...(s.carries?.values() ?? [])].flatMap((v) => (v === "rest" ? [] : [v]))),
   ];
 }

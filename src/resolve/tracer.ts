@@ -15,7 +15,9 @@ export function resolveTracer(node: Tree | undefined, report: Report): Tracer | 
   if (!aboveZero("the loss of a tracer", loss, true, report)) return "faulty";
   const retained = entriesOf(child(node, "retained")).map(({ key, value }) => resolveRetained(key, value, report));
   if (!retained.every((r) => r !== undefined)) return "faulty";
+  const follows = child(node, "follows");
   return {
+    ...(follows?.type === "scalar" ? { follows: { of: follows.text, at: follows.at } } : {}),
     ...(halfLife ? { decay: Math.LN2 / halfLife.of([]) } : {}),
     ...(loss && loss.of([]) > 0 ? { loss: loss.of([]) } : {}),
     ...(retained.length > 0 ? { retained } : {}),

@@ -1,9 +1,11 @@
 import { kindValues } from "../compile/evaluate.js";
 import type { Plant } from "../compile/plant.js";
+import { plantFollowing } from "../compile/sends.js";
 import { broughtTo } from "../compile/through.js";
 import { memberOf } from "../model/members.js";
 import type { Check } from "../model/network.js";
 import { meanAges } from "./ages.js";
+import { moments } from "./moments.js";
 
 /** What a statement of a network came to; value and `equals` in SI. */
 export interface CheckResult {
@@ -19,13 +21,15 @@ export function runChecks(plant: Plant): CheckResult[] {
   let times: ReadonlyMap<string, number> | undefined;
   return plant.network.checks.map((check): CheckResult => {
     const equals = check.equals.of(plant.env);
-    if (check.what === "mean-time") times ??= meanTimes(plant);
+    if (check.what === "mean-time" && !check.follows) times ??= meanTimes(plant);
     const value =
       check.what === "volume"
         ? volumeOf(plant, check.of)
         : check.what === "flow"
           ? flowOf(plant, check.of)
-          : (times?.get(check.of) ?? Number.NaN);
+          : check.follows
+            ? meanTimeOf(plant, check.follows.of, check.of)
+            : (times?.get(check.of) ?? Number.NaN);
     return { check, value, equals, holds: Math.abs(value - equals) <= check.within * Math.abs(equals) };
   });
 }
@@ -37,6 +41,16 @@ function meanTimes(plant: Plant): Map<string, number> {
   const sum = (of: (o: Plant["outlets"][number]) => number): number => wet.reduce((total, o) => total + of(o), 0);
   const all: [string, number] = ["all", sum((o) => o.flow * ages[o.node]) / sum((o) => o.flow)];
   return new Map([...plant.outlets.map((o): [string, number] => [o.name, ages[o.node]]), all]);
+}
+
+/** Mean residence time of a substance that divides otherwise than the liquid, brought by all feeds alike, s. */
+function meanTimeOf(liquid: Plant, of: string, outlet: string): number {
+  const plant = plantFollowing(liquid, of);
+  const fed = plant.feeds.reduce((sum, f) => sum + f.flow, 0);
+  const all = moments(plant, new Map(plant.feeds.map((f) => [f.node, f.flow / fed])));
+  const outlets = plant.outlets.filter((o) => outlet === "all" || o.name === outlet).map((o) => all[o.node]);
+  const wet = outlets.filter((m) => m.share > 0);
+  return wet.reduce((sum, m) => sum + m.share * m.mean, 0) / wet.reduce((sum, m) => sum + m.share, 0);
 }
 
 function volumeOf({ network, env, volume, columns }: Plant, name: string): number {

@@ -2,8 +2,9 @@ import type { Plant } from "../compile/plant.js";
 import { isClosed } from "../model/network.js";
 import { type Adjacency, adjacency } from "../numerics/graph.js";
 import { NodeEquations } from "../transfer/node-equations.js";
-import { type Entry, partsOf } from "./entry.js";
+import type { Entry } from "./entry.js";
 import type { Passing } from "./laplace-gain.js";
+import { putIn } from "./moments.js";
 
 /** Tracer on its way into a copy: what left a delayed node; `slot` numbers it. */
 export interface Seed {
@@ -66,7 +67,7 @@ export function passes(
     if (copies.length >= budget && !undispersed) return { copies, rest: open, slots, truncated: false };
     if (copies.length >= mostCopies) return { copies, rest: [], slots, truncated: true };
     const { delay, seeds } = waiting.shift() as (typeof waiting)[number];
-    const put = copies.length === 0 ? putIn(plant, entry) : [];
+    const put = copies.length === 0 ? putIn(plant.columns.inflow, entry) : [];
     const direct = new Float64Array(n);
     const smooth = new Float64Array(n);
     for (const [node, c] of put) if (passing[node].delay === 0) direct[node] += c * passing[node].direct;
@@ -105,13 +106,6 @@ export function passes(
   }
   return { copies, rest: [], slots, truncated: false };
 }
-
-/** What a unit of tracer adds to the mean of what enters each node, 1/m3 s; nothing where nothing flows. */
-const putIn = (plant: Plant, entry: Entry): [node: number, concentration: number][] =>
-  [...partsOf(entry)].flatMap(([node, part]): [number, number][] => {
-    const { inflow } = plant.nodes[node];
-    return inflow > 0 ? [[node, part / inflow]] : [];
-  });
 
 /** The seed of a node at a time, made where there is none; equal times are one. */
 function arrive(waiting: { delay: number; seeds: Seed[] }[], delay: number, node: number, slot: number): Seed {

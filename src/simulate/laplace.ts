@@ -3,11 +3,12 @@ import type { Plant } from "../compile/plant.js";
 import { isClosed } from "../model/network.js";
 import { invert, type Wanted } from "../numerics/inversion.js";
 import { SteadyEquations } from "../transfer/steady-equations.js";
-import { type Entry, partsOf } from "./entry.js";
+import type { Entry } from "./entry.js";
 import { type Passing, passings } from "./laplace-gain.js";
 import { type Passes, passes } from "./laplace-passes.js";
 import { type Channel, transformsOf } from "./laplace-transforms.js";
 import { type Drive, driveAt } from "./linear-system.js";
+import { putIn } from "./moments.js";
 import type { Balance, Seen } from "./respond.js";
 import type { NodeLook, TracerWay, Tracing } from "./tracing.js";
 
@@ -66,10 +67,7 @@ class LaplaceTracing implements Tracing {
       this.doses.fill(unit / plant.volume.active);
       return;
     }
-    for (const [node, part] of partsOf(entry)) {
-      const { inflow } = plant.nodes[node];
-      if (inflow > 0) this.doses[node] += part / inflow;
-    }
+    for (const [node, level] of putIn(plant.columns.inflow, entry)) this.doses[node] += level;
     new SteadyEquations(plant).solve(this.doses);
   }
 

@@ -2,6 +2,7 @@ import { orders } from "../compartments/block.js";
 import type { Plant } from "../compile/plant.js";
 import { gainColumns } from "../transfer/gain.js";
 import { SteadyEquations } from "../transfer/steady-equations.js";
+import { type Entry, partsOf } from "./entry.js";
 
 /** Of the residence time at a node's outflow, for a unit of tracer put in: exact, no curve is summed. */
 export interface NodeMoments {
@@ -17,10 +18,10 @@ export interface NodeMoments {
 /**
  * Moments at every node from the Taylor series in s of the node equations, order by order: all terms of an order have one
  * sign, so that no digits cancel. What is infinite from some order on reaches only what lies behind it, from that order on.
- * @param entry node into which a unit of tracer is put
+ * @param entry where a unit of tracer is put in
  * @param nodes where they are wanted; default: everywhere
  */
-export function moments(plant: Plant, entry: number, nodes?: readonly number[]): NodeMoments[] {
+export function moments(plant: Plant, entry: Entry, nodes?: readonly number[]): NodeMoments[] {
   const { size, inflow } = plant.columns;
   const gains = gainColumns(plant);
   const equations = new SteadyEquations(plant);
@@ -29,11 +30,11 @@ export function moments(plant: Plant, entry: number, nodes?: readonly number[]):
   for (let k = 0; k < orders; k++) {
     const c = new Float64Array(size);
     for (let j = 1; j <= k; j++) addFinite(c, gains[j], entering[k - j]);
-    const put = k === 0 && inflow[entry] > 0 ? 1 / inflow[entry] : 0;
-    c[entry] += put;
+    const put = k === 0 ? putIn(inflow, entry) : [];
+    for (const [node, level] of put) c[node] += level;
     if (!equations.solve(c)) return Array.from(nodes ?? c, () => momentsOf(0, 0, 0, 0, 0));
     const mean = equations.entering(c);
-    mean[entry] += put;
+    for (const [node, level] of put) mean[node] += level;
     leaving.push(c);
     entering.push(mean);
   }
@@ -45,6 +46,12 @@ export function moments(plant: Plant, entry: number, nodes?: readonly number[]):
   };
   return nodes ? nodes.map(at) : Array.from(inflow, (_, i) => at(i));
 }
+
+/** What a unit of tracer adds to the mean of what enters each node; nothing where nothing flows. */
+export const putIn = (inflow: ArrayLike<number>, entry: Entry): [node: number, level: number][] =>
+  [...partsOf(entry)].flatMap(([node, part]): [number, number][] =>
+    inflow[node] > 0 ? [[node, part / inflow[node]]] : [],
+  );
 
 /** c += gain x, where the gain is finite. */
 function addFinite(c: Float64Array, gain: Float64Array, x: Float64Array): void {

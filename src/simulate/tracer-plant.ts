@@ -1,18 +1,20 @@
 import { type Block, orders } from "../compartments/block.js";
 import { columnsOf } from "../compile/node-list.js";
 import { Part, type Plant, type PlantNode } from "../compile/plant.js";
+import { plantFollowing } from "../compile/sends.js";
+import { Structure } from "../compile/structure.js";
 import type { Retained, Tracer } from "../model/trial.js";
 import { type Complex, complex } from "../numerics/complex.js";
-import { stronglyConnected } from "../numerics/graph.js";
 import type { Taylor } from "../numerics/taylor.js";
 
 /**
- * The plant as a tracer sees it that is held back or lost on its way. A body that holds it back has so many times its
+ * The plant as a tracer sees it that divides otherwise than the liquid, is held back or lost on its way. A body that holds it back has so many times its
  * volume. A loss of first order thins the tracer as clean water would: into a cell of volume V as much as loss times V,
  * behind a tube or another body what its transfer function at s = loss makes of a steady stream. Both are exact; flows
  * between bodies stay as they are.
  */
-export function tracerPlant(plant: Plant, tracer: Tracer | undefined): Plant {
+export function tracerPlant(liquid: Plant, tracer: Tracer | undefined): Plant {
+  const plant = plantFollowing(liquid, tracer?.follows?.of);
   const loss = tracer?.loss ?? 0;
   const retained = tracer?.retained ?? [];
   if (loss === 0 && retained.length === 0) return plant;
@@ -81,11 +83,14 @@ function withLoss(plant: Plant, loss: number): Plant {
   }
   nodes[water] = { ...nodes[water], inflow: clean };
   const links = { from: Int32Array.from(from), to: Int32Array.from(to) };
+  const lossy = rebuilt(plant, nodes);
+  const structure = new Structure(lossy.columns.part, links.from, links.to);
   return {
-    ...rebuilt(plant, nodes),
+    ...lossy,
     ...links,
     flow: Float64Array.from(flow),
-    groups: stronglyConnected({ size: nodes.length, ...links }),
+    structure,
+    groups: structure.groups,
     exit: new MovedPlaces(plant.exit, behind),
   };
 }

@@ -145,8 +145,6 @@ function spikesOf(
  */
 export function settlingTime(plant: Plant, at: string, level = 0.999, mostMeans = 20): number {
   const total = plant.feeds.reduce((sum, f) => sum + f.flow, 0);
-  const most = (mostMeans * plant.volume.active) / total;
-  if (!(most > 0)) return 1;
   const entry = plant.entry.get(at) as number;
   const { outlets } = plant;
   const found = moments(
@@ -154,6 +152,10 @@ export function settlingTime(plant: Plant, at: string, level = 0.999, mostMeans 
     entry,
     outlets.map((o) => o.node),
   );
+  // What does not divide as the liquid does may stay much longer.
+  const own = plant.follows === undefined ? [] : found.map((m) => m.mean).filter(Number.isFinite);
+  const most = mostMeans * Math.max(plant.volume.active / total, ...own);
+  if (!(most > 0)) return 1;
   const times = Float64Array.from({ length: 800 }, (_, i) => (most * (i + 1)) / 800);
   let until = 0;
   // Most curves are over long before the end, and a long run costs more than a short one.

@@ -24,7 +24,7 @@ export interface MovedResponse {
   readonly slopes: readonly (readonly Float64Array[] | undefined)[];
 }
 
-/** Are there these derivatives? For plants of the exact engine, but for closed ones and trials that start with tracer inside. */
+/** Are there these derivatives? For plants of the exact engine, but for closed ones, and trials that start with tracer inside or do not follow the liquid. */
 export const hasSlopes = (plant: Plant, trial: Trial): boolean =>
   !plant.columns.part.includes(Part.Block) &&
   !isClosed(plant) &&

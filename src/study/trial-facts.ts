@@ -1,10 +1,12 @@
 import { compile } from "../compile/compile.js";
 import type { Plant } from "../compile/plant.js";
+import { plantFollowing } from "../compile/sends.js";
 import type { MomentsOptions } from "../data/moments.js";
 import type { WayOut } from "../data/result.js";
 import { isClosed, type Network } from "../model/network.js";
 import type { Study } from "../model/study.js";
 import type { Trial } from "../model/trial.js";
+import { moments } from "../simulate/moments.js";
 import { tracerPlant } from "../simulate/tracer-plant.js";
 import { dimensions } from "../units/dimension.js";
 
@@ -42,18 +44,26 @@ export function vesselFacts(network: Network, trial: Trial): MomentsOptions {
     },
     throughflow: known(throughflow, relative),
     volume: known(volume, volumeSd / plant.volume.total),
-    ...placesOf(plant),
+    ...placesOf(plantFollowing(plant, trial.tracer?.follows?.of)),
   };
 }
 
 /** Feeds, ways out and the unit of volumes of a plant, for moments. */
-export function placesOf(plant: Plant): Pick<MomentsOptions, "volumeUnit" | "feeds" | "wayOut" | "closed"> {
+export function placesOf(plant: Plant): Pick<MomentsOptions, "volumeUnit" | "feeds" | "wayOut" | "closed" | "follows"> {
   return {
     volumeUnit: plant.network.units.unitFor(dimensions.volume),
     closed: isClosed(plant),
+    ...(plant.follows === undefined ? {} : { follows: plant.follows }),
     feeds: new Map(plant.feeds.map((f) => [f.name, f.flow])),
     wayOut: (at) => wayOutOf(plant, at),
   };
+}
+
+/** Share of what is fed that leaves by an outlet: of the liquid, or of the substance that the plant is of. */
+function shareOf(plant: Plant, outlet: Plant["outlets"][number]): number {
+  const whole = plant.feeds.reduce((sum, f) => sum + f.flow, 0);
+  if (plant.follows === undefined) return outlet.flow / whole;
+  return moments(plant, new Map(plant.feeds.map((f) => [f.node, f.flow / whole])))[outlet.node].share;
 }
 
 /** A place is a way out if it is an outlet, or the one body that an outlet takes all its liquid from. */
@@ -63,5 +73,5 @@ function wayOutOf(plant: Plant, at: string): WayOut {
   const into = (name: string) => plant.streams.filter((s) => s.to === name && s.flow > 0);
   const own = outlets.find((o) => o.name === at || into(o.name).every((s) => s.from === at));
   const others = outlets.filter((o) => o !== own).map((o) => o.name);
-  return { isOutlet: own !== undefined, share: own ? own.flow / whole : 0, others };
+  return { isOutlet: own !== undefined, share: own ? shareOf(plant, own) : 0, others };
 }

@@ -2,6 +2,7 @@ import type { Plant } from "../compile/plant.js";
 import { type BalanceSolver, balanceSolver } from "../numerics/balance-solver.js";
 import { adjacency } from "../numerics/graph.js";
 import { gth } from "../numerics/gth.js";
+import { plainCircle } from "./plain-circle.js";
 
 /** Up to here a circle is solved by elimination, above it by iteration. */
 const mostDense = 300;
@@ -29,11 +30,14 @@ export class SteadyEquations {
   private readonly groupOf: Int32Array;
   private readonly from: Int32Array;
   private readonly to: Int32Array;
+  /** Parts that enter a node do not make 1: of a substance that divides otherwise than the liquid. */
+  private readonly unlike: boolean;
 
   /** @param backward the same for links turned round: b travels upstream, shares being of what leaves a node */
   constructor(plant: Plant, backward = false) {
     const { size, inflow } = plant.columns;
     const { flow } = plant;
+    this.unlike = plant.follows !== undefined;
     this.from = backward ? plant.to : plant.from;
     this.to = backward ? plant.from : plant.to;
     const { to } = this;
@@ -117,6 +121,17 @@ export class SteadyEquations {
     }
     const size = group.length;
     if (links.length === 0 || inflow[group[0]] === 0) return undefined;
+    if (this.unlike) {
+      const [rows, columns] = [links.map((k) => place[this.to[k]]), links.map((k) => place[this.from[k]])];
+      return (
+        plainCircle(
+          size,
+          rows,
+          columns,
+          links.map((k) => this.weight[k]),
+        ) ?? unsolvable
+      );
+    }
     const excess = Float64Array.from(group, (i) => this.fromOutside(i));
     if (size <= mostDense) {
       const matrix = new Float64Array(size * size);

@@ -1,4 +1,5 @@
 import type { Plant } from "../../compile/plant.js";
+import { partingsOf } from "../../compile/sends.js";
 import { dimensions } from "../../units/dimension.js";
 import { bodiesOf, vesselOf } from "../vessel.js";
 import { type QuantityJson, quantity } from "./quantity.js";
@@ -16,6 +17,7 @@ export function networkJson(plant: Plant): object {
     ),
     volumes: Object.fromEntries(bodies.map((b) => [b.name, volume(b.volume)])),
     spaceTimes: Object.fromEntries(bodies.map((b) => [b.name, quantity(b.spaceTime, units.time)])),
+    ...sendsJson(plant),
     vessel: {
       volume: volume(vessel.volume),
       active: volume(vessel.active),
@@ -24,4 +26,14 @@ export function networkJson(plant: Plant): object {
       meanTime: quantity(vessel.meanTime, units.time),
     },
   };
+}
+
+/** By substance that divides otherwise than the liquid, the share of it that each stream takes. */
+function sendsJson(plant: Plant): { sends?: Record<string, Record<string, number>> } {
+  const sends: Record<string, Record<string, number>> = {};
+  for (const { of, from, to, share } of partingsOf(plant)) {
+    sends[of] ??= {};
+    sends[of][`${from}>${to}`] = share;
+  }
+  return Object.keys(sends).length > 0 ? { sends } : {};
 }

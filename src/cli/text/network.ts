@@ -1,4 +1,5 @@
 import type { Plant } from "../../compile/plant.js";
+import { partingsOf } from "../../compile/sends.js";
 import { dimensions } from "../../units/dimension.js";
 import { formatNumber, formatQuantity } from "../../units/format.js";
 import { inUnit } from "../../units/unit.js";
@@ -25,6 +26,14 @@ export function networkText(plant: Plant): string {
     formatNumber(inUnit(b.flow, flow)),
     b.flow > 0 || b.volume === 0 ? formatNumber(inUnit(b.spaceTime, time)) : "no flow",
   ]);
+  const partings = partingsOf(plant).map((p) => [
+    p.of,
+    `${p.from} -> ${p.to}`,
+    `${formatNumber(100 * p.share)} %`,
+    `${formatNumber(100 * p.liquid)} %`,
+    p.liquid > 0 ? formatNumber(p.share / p.liquid) : "",
+  ]);
+  const right = (title: string) => ({ title, align: "right" as const });
   const vessel = vesselOf(plant);
   const dead = vessel.dead > 0 ? `, ${formatQuantity(vessel.dead, volume)} of it dead` : "";
   return blocks(
@@ -39,6 +48,18 @@ export function networkText(plant: Plant): string {
       ],
       bodies,
     ),
+    partings.length > 0
+      ? table(
+          [
+            { title: "substance" },
+            { title: "stream" },
+            right("share of it"),
+            right("of the liquid"),
+            right("times as concentrated"),
+          ],
+          partings,
+        )
+      : "",
     pairs([
       ["vessel", `${formatQuantity(vessel.volume, volume)}${dead}`],
       ...(vessel.meanTime === undefined

@@ -146,16 +146,6 @@ export const dataEntries = {
       `the tracer at the start is in ${amount}; the reading at '${at}' is in ${reading}`,
     fix: "write both as the same kind of concentration, give the reading a calibration, or `scale: free` where only the shape is trusted",
   }),
-  "closed-inlet": entry<{ at: string }>({
-    severity: "error",
-    says: ({ at }) => `nothing enters a closed vessel, so no concentration can enter it at '${at}'`,
-    fix: "put an amount in with `pulse:` (and `lasting:`), dose with a rate such as `step: 3 g/min`, or let it start with `contents:`",
-  }),
-  "contents-nothing": entry<{ name: string; why: string }>({
-    severity: "error",
-    says: ({ name, why }) => `'${name}' cannot start with tracer inside: ${why}`,
-    fix: "name a body that holds liquid which the flow reaches, or `all`",
-  }),
   "start-unclear": entry<{ text: string; example: string }>({
     severity: "error",
     says: ({ text }) => `'${text}' is neither a time as the readings write it nor an elapsed time`,

@@ -100,6 +100,28 @@ export const flowEntries = {
     says: ({ names }) => `the flow that goes round through ${quoted(names)} has no end: no share of it leaves`,
     fix: "let a share above 0 % of it go on towards an outlet; fixed flows alone do not settle it",
   }),
+  "sends-where": entry<{ name: string; body: string; nearest: string | undefined; known: readonly string[] }>({
+    severity: "error",
+    says: ({ name, body }) => `'${body}' has no stream to '${name}' that a substance could take`,
+    fix: ({ nearest, known }) =>
+      nearest
+        ? `did you mean '${nearest}'?`
+        : known.length > 0
+          ? `name the streams as \`to:\` does: ${known.join(", ")}`
+          : "say under `to:` where its outflow goes first",
+  }),
+  "sends-sum": entry<{ name: string; of: string; total: string; rest: boolean }>({
+    severity: "error",
+    says: ({ name, of, total, rest }) =>
+      `shares of '${of}' out of '${name}' add to ${total}${rest ? " and leave no `rest`" : ""}`,
+    fix: ({ rest }) =>
+      rest ? "lower them to 100 % or less together" : "write `rest` for one of its streams, or make them add to 100 %",
+  }),
+  "sends-dry": entry<{ name: string; to: string; of: string; share: string }>({
+    severity: "error",
+    says: ({ name, to, of, share }) => `'${name}' sends ${share} of '${of}' to '${to}', but no liquid to carry it`,
+    fix: "send some liquid there, too; a substance moves only with what flows",
+  }),
   "closed-apart": entry<{ names: readonly string[]; from: string }>({
     severity: "error",
     says: ({ names, from }) => `in this closed vessel nothing joins ${quoted(names)} with '${from}'`,

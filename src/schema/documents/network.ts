@@ -8,12 +8,9 @@ export interface KindKeys {
   readonly keys: Readonly<Record<string, KeyShape>>;
   readonly flows: boolean;
   readonly exchanges: boolean;
+  /** May a species divide otherwise than the liquid where its outflow splits? */
+  readonly sends?: boolean;
 }
-
-/** Keys of the language that belong to some kind and that this version refuses there. */
-const laterKeys: Record<string, string> = {
-  sends: "One species that divides otherwise than the liquid.",
-};
 
 const to: KeyShape = {
   says: "Where the outflow goes: one name takes all of it; a map splits it by shares of the outflow (`30 %`), fixed flows (`4 L/min`) and at most one `rest`. Without `rest` shares add to 100 %; with a fixed flow there must be a `rest`. A stream to a place upstream is a recycle, one that skips ahead a bypass.",
@@ -28,6 +25,22 @@ const exchange: KeyShape = {
   example: "{corner: 1.5 L/min}",
   shape: named(quantity("flow"), "dotted"),
 };
+
+const sends: KeyShape = {
+  says: "Substances that divide otherwise than the liquid where the outflow splits (a thickener, a membrane, a screen), by name: the share of each that every stream of `to` takes, at most one `rest`; what is not named there gets none. It is carried along by the liquid everywhere else. A trial follows such a substance with `tracer: {follows: solids}`; what no name follows divides as the liquid does.",
+  example: "{solids: {sludge: 98 %, effluent: rest}}",
+  shape: named(named(quantity("ratio"), "dotted")),
+};
+
+/** `sends` on a body that is no place where streams are parted. */
+const noSends = (kind: string): KeyShape => ({
+  shape: text,
+  says: "Not on this kind of body.",
+  elsewhere: {
+    says: `\`sends\` is for stirred tanks and junctions, not for a body of \`kind: ${kind}\``,
+    fix: "send its outflow to a `kind: junction` and let that part the substances",
+  },
+});
 
 /** `exchange` on a body that has no one well-mixed place to exchange with. */
 const noExchange = (kind: string, stagnant: boolean): KeyShape => ({
@@ -49,7 +62,8 @@ function kindRecord(name: string, kind: KindKeys): VariantShape {
   if (kind.flows && !kind.keys.to) keys.to = kind.exchanges ? { ...to, required: false } : to;
   if (kind.exchanges) keys.exchange = exchange;
   else if (kind.flows) keys.exchange = noExchange(name, "stagnant" in kind.keys);
-  if (kind.flows) for (const key in laterKeys) if (!(key in keys)) keys[key] = later(laterKeys[key]);
+  if (kind.sends) keys.sends = sends;
+  else if (kind.flows) keys.sends = noSends(name);
   return { says: kind.says, keys };
 }
 
@@ -148,6 +162,12 @@ const checks: KeyShape = {
           shape: name,
           says: "The flow through this compartment, part, member of a `repeat` (`chain.2`), feed or outlet; exchange and backflow left out.",
           example: "bulk",
+        },
+        follows: {
+          shape: name,
+          says: "With `mean-time`: of this substance, which `sends` divides, in place of the liquid; all that feeds bring.",
+          needs: "mean-time",
+          example: "solids",
         },
         equals: {
           shape: quantity("time", "volume", "flow"),

@@ -151,6 +151,11 @@ export const trialShape = record({
     says: "What the tracer does that the liquid does not.",
     example: "{half-life: 15 h}",
     shape: record({
+      follows: {
+        shape: name,
+        says: "The substance of the network's `sends` that it divides with, where streams part. Without it the tracer divides as the liquid does.",
+        example: "solids",
+      },
       "half-life": {
         shape: quantity("time"),
         says: "Radioactive decay, everywhere alike. Amounts and levels are those at `start` of their injection; what is dosed later has decayed till then. `moments` brings readings back to that time.",
