@@ -83,10 +83,10 @@ function withLoss(plant: Plant, loss: number): Plant {
   }
   nodes[water] = { ...nodes[water], inflow: clean };
   const links = { from: Int32Array.from(from), to: Int32Array.from(to) };
-  const lossy = rebuilt(plant, nodes);
-  const structure = new Structure(lossy.columns.part, links.from, links.to);
+  const thinned = rebuilt(plant, nodes);
+  const structure = new Structure(thinned.columns.part, links.from, links.to);
   return {
-    ...lossy,
+    ...thinned,
     ...links,
     flow: Float64Array.from(flow),
     structure,
