@@ -43,14 +43,13 @@ export class Inputs {
 
   /** Text of a file or stream named on the command line, or the reason why there is none. */
   text(path: string): string | Problem {
-    const megabyte = 1024 ** 2;
     const size = this.io.size?.(path) ?? 0;
-    if (size > largestDocument) return problem("file-too-large", at(path), { megabytes: Math.ceil(size / megabyte) });
+    if (size > largestDocument) return problem("file-too-large", at(path), { bytes: size });
     if (!this.contents.has(path)) this.contents.set(path, this.io.read(path, largestDocument));
     const content = this.contents.get(path);
     if (content !== undefined && content.length > largestDocument) {
       // A stream was read no further.
-      return problem("file-too-large", at(path), { megabytes: largestDocument / megabyte, orMore: true });
+      return problem("file-too-large", at(path), { bytes: content.length, orMore: true });
     }
     if (content !== undefined) return decodeText(content);
     const why = this.io.obstacle(path);

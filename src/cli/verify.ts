@@ -2,8 +2,9 @@ import { compile } from "../compile/compile.js";
 import type { UnitBook } from "../model/network.js";
 import { parseAny } from "../parse/any.js";
 import { problemJson } from "../problems/json.js";
+import type { Obstacle } from "../problems/obstacle.js";
 import type { Problem } from "../problems/problem.js";
-import { hasErrors } from "../problems/report.js";
+import { hasErrors, problem } from "../problems/report.js";
 import { type CheckResult, runChecks } from "../simulate/checks.js";
 import { placeOf } from "../text/source.js";
 import { inUnit } from "../units/unit.js";
@@ -21,8 +22,10 @@ export interface VerifyOptions {
 
 /** `verify DIR`: every YAML document under a folder is sound, and every statement of every network holds. */
 export function verify(folder: string, { format }: VerifyOptions, { inputs, io }: Context): Outcome {
-  const { files, skipped } = documentsUnder(folder, io);
+  const { files, skipped, lost } = documentsUnder(folder, io);
   const verified = files.map((file): Verified => {
+    const why = lost.get(file);
+    if (why) return { file, kind: undefined, problems: [unreadable(file, why)], statements: [] };
     const text = inputs.text(file);
     if (typeof text !== "string") return { file, kind: undefined, problems: [text], statements: [] };
     const { kind, network, problems } = parseAny(text, inputs.options(file));
@@ -66,26 +69,44 @@ function statement({ check, value, equals, holds }: CheckResult, units: UnitBook
   return { name, value, equals, unit, within: check.within, off, holds, line: placeOf(check.at).line };
 }
 
-/** Every YAML file below a folder, in order, and what was not looked into. */
-function documentsUnder(folder: string, io: Io): { files: string[]; skipped: string[] } {
-  const files: string[] = [];
-  const skipped: string[] = [];
+/** What is not there for reading has no line to show. */
+const unreadable = (file: string, why: Obstacle): Problem =>
+  problem("file-unreadable", { source: { path: file, text: "" }, from: 0, to: 0 }, { file, why });
+
+/** A folder as it is walked. */
+interface Walk {
+  /** Every YAML document, and all that should be one, or lead to some, and cannot be read. */
+  readonly files: string[];
+  /** What is not looked into on purpose. */
+  readonly skipped: string[];
+  readonly lost: Map<string, Obstacle>;
+}
+
+/** Every YAML file below a folder, in order. */
+function documentsUnder(folder: string, io: Io): Walk {
+  const walk: Walk = { files: [], skipped: [], lost: new Map() };
+  const lose = (path: string, why: Obstacle): void => {
+    walk.files.push(path);
+    walk.lost.set(path, why);
+  };
   const look = (path: string): void => {
     const entries = io.list(path);
     if (!entries) {
-      skipped.push(path);
+      lose(path, "denied");
       return;
     }
     for (const { name, is } of [...entries].sort((a, b) => (a.name < b.name ? -1 : 1))) {
       const inside = path === "." ? name : `${path.replace(/[/\\]+$/, "")}/${name}`;
-      if (is === "folder" && (name === "node_modules" || name.startsWith("."))) skipped.push(inside);
+      if (is === "folder" && (name === "node_modules" || name.startsWith("."))) walk.skipped.push(inside);
       else if (is === "folder") look(inside);
-      else if (is === "lost") skipped.push(inside);
-      else if (/\.ya?ml$/i.test(name)) (is === "file" ? files : skipped).push(inside);
+      else if (is === "lost") lose(inside, io.obstacle(inside) ?? "dangling");
+      else if (!/\.ya?ml$/i.test(name)) continue;
+      else if (is === "file") walk.files.push(inside);
+      else lose(inside, io.obstacle(inside) ?? "other");
     }
   };
   if (io.list(folder) === undefined) throw new UsageError(`'${folder}' is no folder that can be read`);
   look(folder);
-  if (files.length === 0) throw new UsageError(`there is no YAML file under '${folder}'`);
-  return { files, skipped };
+  if (walk.files.length === 0) throw new UsageError(`there is no YAML file under '${folder}'`);
+  return walk;
 }

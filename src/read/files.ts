@@ -15,8 +15,8 @@ export interface Files {
   readonly obstacle?: ((path: string) => Obstacle | undefined) | undefined;
 }
 
-/** A document may have so many bytes. */
-export const largestDocument = 10 * 1024 * 1024;
+/** A document may have so many bytes, and so many letters. */
+export const largestDocument = 2 * 1024 * 1024;
 
 /** And a table so many: what a message can still show of a file is less than the longest string. */
 export const largestTable = 500 * 1024 * 1024;

@@ -20,7 +20,7 @@ type Reach = Pick<Files, "read" | "size" | "obstacle">;
 export function openText(file: string, as: NamedAs, files: Reach, report: Report): string | undefined {
   const size = files.size?.(file) ?? 0;
   if (size > largestDocument) {
-    report("file-too-large", as.at, { megabytes: Math.ceil(size / megabyte) });
+    report("file-too-large", as.at, { bytes: size });
     return undefined;
   }
   const content = contentOf(file, as, files, report);

@@ -67,6 +67,7 @@ class Reader {
     if (/[\u0000-\u0009\u000b-\u001f\u007f-\u009f\u2028\u2029\ufeff]|^(?:---|\.\.\.|%)/m.test(text)) refuse();
     let start = 0;
     let remark = 0; // indent of a comment since the last line
+    let sign = -1; // where the next comment behind something begins, or the end
     while (start < text.length) {
       let end = text.indexOf("\n", start);
       if (end < 0) end = text.length;
@@ -78,7 +79,9 @@ class Reader {
         if (remark > from - start) refuse();
         remark = 0;
         let to = end;
-        const comment = commentIn(text, from, end);
+        if (sign < from) sign = text.indexOf(" #", from);
+        if (sign < 0) sign = text.length;
+        const comment = commentIn(text, from, end, sign);
         if (comment >= 0) to = comment;
         while (text[to - 1] === " ") to--;
         const line = { indent: from - start, from, to, end: Math.min(end + 1, text.length) };
@@ -298,10 +301,9 @@ function startsPlain(text: string, at: number): boolean {
   return plainStart.test(text);
 }
 
-/** Where a comment begins on a line, outside quotes; -1 where there is none. */
-function commentIn(text: string, from: number, end: number): number {
-  const first = text.indexOf(" #", from);
-  if (first < 0 || first >= end) return -1;
+/** Where a comment begins on a line; -1 where there is none. `first` is the first sign of one from there on. */
+function commentIn(text: string, from: number, end: number, first: number): number {
+  if (first >= end) return -1;
   // With quotes before it, where it begins is not told by a glance.
   for (let i = from; i < first; i++) if (text[i] === '"' || text[i] === "'") refuse();
   return first;

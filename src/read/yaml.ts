@@ -2,6 +2,7 @@ import { type Document, parseDocument } from "yaml";
 import type { Report } from "../problems/report.js";
 import type { Source } from "../text/source.js";
 import { reportGlued } from "./colons.js";
+import { largestDocument } from "./files.js";
 import { deepest, growTree } from "./grow.js";
 import { isText } from "./is-text.js";
 import { plainYaml } from "./plain-yaml.js";
@@ -9,8 +10,6 @@ import { reportSyntax } from "./syntax.js";
 import { mendTraps } from "./traps.js";
 import type { MapNode } from "./tree.js";
 
-const megabyte = 1024 * 1024;
-const largest = 2 * megabyte;
 /** A second's work, and a thousand vessels' worth. */
 const mostParts = 50_000;
 
@@ -20,8 +19,8 @@ const mostParts = 50_000;
  */
 export function readYaml(source: Source, report: Report): MapNode | undefined {
   const start = { source, from: 0, to: 0 };
-  if (source.text.length > largest) {
-    report("file-too-large", start, { megabytes: Math.ceil(source.text.length / megabyte) });
+  if (source.text.length > largestDocument) {
+    report("file-too-large", start, { bytes: source.text.length });
     return undefined;
   }
   if (!isText(source.text)) {

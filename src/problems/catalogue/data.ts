@@ -21,7 +21,8 @@ export const dataEntries = {
   "file-unreadable": entry<{ file: string; why: Obstacle }>({
     severity: "error",
     says: ({ file, why }) => `'${file}' ${obstacleWords[why]}`,
-    fix: "name a file that may be read",
+    fix: ({ why }) =>
+      why === "dangling" || why === "loop" ? "mend the link or take it away" : "name a file that may be read",
   }),
   "csv-empty": entry<{ file: string }>({
     severity: "error",

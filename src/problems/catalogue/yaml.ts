@@ -17,11 +17,12 @@ export const yamlEntries = {
     says: (d) => `the file holds ${d.found}, not keys with values`,
     fix: "begin with what it is: `network: TITLE`, then `format: 1`",
   }),
-  "file-too-large": entry<{ megabytes: number; orMore?: boolean }>({
+  "file-too-large": entry<{ bytes: number; orMore?: boolean }>({
     severity: "error",
-    says: (d) => `the file has ${d.megabytes} MB${d.orMore ? " or more" : ""}; a document may have 2 MB`,
+    says: (d) =>
+      `the file has ${d.orMore ? "more than 2" : Math.ceil(d.bytes / 104_857.6) / 10} MB; a document may have 2 MB`,
     fix: "keep tables in CSV files and name them here",
-    example: { megabytes: 11 },
+    example: { bytes: 11_500_000 },
   }),
   "too-many-parts": entry<{ limit: number }>({
     severity: "error",
