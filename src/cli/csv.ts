@@ -25,3 +25,19 @@ function cell(content: string | number): string {
   const text = typeof content === "number" && !Number.isFinite(content) ? "" : String(content);
   return /[",\n\r]/.test(text) ? `"${text.replace(/"/g, '""')}"` : text;
 }
+
+/** A table of columns that may be long: a name in front, then numbers. Numbers read back to the same double. */
+export function columnsCsv(
+  header: readonly string[],
+  size: number,
+  nameOf: (row: number) => string,
+  number: (row: number, column: number) => number,
+): string {
+  const lines = [header.map(cell).join(",")];
+  for (let row = 0; row < size; row++) {
+    let line = cell(nameOf(row));
+    for (let column = 1; column < header.length; column++) line += `,${cell(number(row, column - 1))}`;
+    lines.push(line);
+  }
+  return `${lines.join("\n")}\n`;
+}

@@ -1,35 +1,65 @@
 import { checkDuty } from "../check/duty.js";
+import type { Plant } from "../compile/plant.js";
+import type { Duty } from "../model/duty.js";
 import type { Network } from "../model/network.js";
 import { parseDuty } from "../parse/duty.js";
 import { collector } from "../problems/report.js";
 import { networkSettings } from "../reaction/conditions.js";
 import { predict } from "../reaction/prediction.js";
+import type { SteadyState } from "../reaction/steady.js";
+import { formatNumber } from "../units/format.js";
+import { inUnit } from "../units/unit.js";
 import type { Context } from "./context.js";
+import { columnsCsv } from "./csv.js";
 import { steadyJson } from "./json/steady.js";
 import type { Outcome } from "./outcome.js";
 import { plantAt } from "./plant.js";
+import { progressOn } from "./progress.js";
 import { settingsFrom } from "./settings.js";
 import type { SimulateOptions } from "./simulate-options.js";
+import { speciesUnits } from "./species.js";
 import { steadyText } from "./text/steady.js";
+import { blocks } from "./text/table.js";
 
 /** `simulate --duty`: the steady state of one operating point. */
-export function simulateDuty(network: Network, options: SimulateOptions, { inputs }: Context): Outcome {
+export function simulateDuty(network: Network, options: SimulateOptions, { inputs, io }: Context): Outcome {
   const duty = inputs.document(options.duty ?? "", parseDuty);
   const { report, problems } = collector();
   checkDuty(network, duty, report);
   inputs.accept(problems);
   const plant = plantAt(network, { ...networkSettings(duty), ...settingsFrom(network, options.set) });
-  const prediction = predict(plant, duty);
+  const progress = progressOn(io);
+  const prediction = predict(plant, duty, {}, ({ together, missing }) =>
+    progress.say(
+      `simulate: ${together.toLocaleString("en")} nodes solved together, balances within ${formatNumber(missing, 1)}`,
+    ),
+  );
+  progress.done();
   const { state: steady } = prediction;
+  const { output } = options;
+  if (output !== undefined) io.write(output, concentrationsCsv(plant, duty, steady));
   const { worst } = steady;
   return {
     status: steady.converged ? 0 : 3,
-    text: steadyText(plant, duty, prediction),
-    json: { ok: steady.converged, duty: duty.title, ...steadyJson(plant, duty, prediction) },
+    text: blocks(steadyText(plant, duty, prediction), output === undefined ? "" : `  concentrations: ${output}`),
+    json: {
+      ok: steady.converged,
+      duty: duty.title,
+      ...steadyJson(plant, duty, prediction),
+      ...(output === undefined ? {} : { written: output }),
+    },
     notes: steady.converged
       ? []
       : [
           `backmix: the steady state did not converge${worst ? `, worst for ${worst.species} in ${worst.node}` : ""}; the best found is printed`,
         ],
   };
+}
+
+/** What leaves every node, cells of tables and members of chains included. */
+function concentrationsCsv({ network, columns }: Plant, duty: Duty, { species, concentrations }: SteadyState): string {
+  const units = speciesUnits(network, duty, species);
+  const n = species.length;
+  const header = ["leaving", ...species.map((s, i) => `${s} [${units[i].name || "1"}]`)];
+  return columnsCsv(header, columns.size, columns.nameOf, (node, i) => inUnit(concentrations[node * n + i], units[i]));
 }

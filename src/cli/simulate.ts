@@ -10,10 +10,10 @@ export async function simulate(file: string, options: SimulateOptions, context: 
     throw new UsageError("say what to simulate: one of --pulse FEED, --step FEED, --trial FILE and --duty FILE");
   }
   if (options.output !== undefined && !/\.csv$/i.test(options.output)) {
-    throw new UsageError(`-o writes the curves as CSV: name a file that ends in .csv, not '${options.output}'`);
+    throw new UsageError(`-o writes CSV: name a file that ends in .csv, not '${options.output}'`);
   }
   if (asked[0] === "duty") {
-    for (const key of ["until", "points", "times", "verify", "output"] as const) {
+    for (const key of ["until", "points", "times", "verify"] as const) {
       if (options[key] !== undefined) throw new UsageError(`--${key} says nothing about the steady state of a duty`);
     }
     if (options.engine !== "auto") throw new UsageError("--engine is for tracer; a duty has one way to be solved");

@@ -34,17 +34,19 @@ const localSteps = 2;
  * The steady state of a large circle: species that follow from others are left out, since what no reaction changes only mixes;
  * then sweeps in flow order, and Newton's method with BiCGStab behind block-wise incomplete LU. Memory linear in nodes and
  * links.
+ * @param watch told the norm of what balances miss, step by step
  * @returns all species, node by node, and how the method ended; undefined where the flows admit no mixture
  */
 export function solveCircle(
   circle: Circle,
   reactions: Reactions,
   conserved: Conserved,
+  watch?: (norm: number) => void,
 ): { y: Float64Array; result: NewtonResult } | undefined {
   const rows = flowRows(circle.graph, circle.share);
   const mixed = mixtures(circle, reactions.cell.size);
   if (!mixed) return undefined;
-  const state = new CircleState(circle, rows, reactions, conserved, mixed);
+  const state = new CircleState(circle, rows, reactions, conserved, mixed, watch);
   for (let k = 0; k < sweeps; k++) state.sweep();
   const result = solveInexactNewton(state, state.x);
   const worst = state.fullIndex(result.worst);
@@ -102,6 +104,7 @@ class CircleState implements System {
     private readonly reactions: Reactions,
     private readonly conserved: Conserved,
     mixed: Float64Array,
+    readonly watch: ((norm: number) => void) | undefined,
   ) {
     const n = reactions.cell.size;
     const { free, dependent, follows } = conserved;

@@ -2,6 +2,7 @@ import type { Plant } from "../compile/plant.js";
 import type { Chemistry } from "../model/chemistry.js";
 import type { Duty, Reported } from "../model/duty.js";
 import { exitTime } from "../simulate/exit-curve.js";
+import { untraceable } from "../simulate/trace.js";
 import { siUnit } from "../units/describe.js";
 import { type Dimension, dimensions, sameDimension } from "../units/dimension.js";
 import { parseUnit } from "../units/parse.js";
@@ -33,7 +34,7 @@ export interface InAndOut {
 export function figuresOf(plant: Plant, duty: Duty, state: SteadyState, settings: DutySettings = {}): Figure[] {
   return duty.report.map((line) => {
     if (line.what === "tracer-time") {
-      const value = exitTime(plant, line.at, (line.percent ?? 0) / 100);
+      const value = untraceable(plant).length > 0 ? Number.NaN : exitTime(plant, line.at, (line.percent ?? 0) / 100);
       return figure(line, value, plant.network.units.time, "not-estimable");
     }
     return speciesFigure(duty, state.species, line, streamsFor(plant, state, line), settings);

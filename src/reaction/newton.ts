@@ -16,6 +16,8 @@ export interface System {
    * that cannot be had.
    */
   step(y: Float64Array, f: Float64Array, rate: number, relative: number, out: Float64Array): boolean;
+  /** Told the norm of F before every step. */
+  readonly watch?: ((norm: number) => void) | undefined;
 }
 
 /** The same by its Jacobian, for elimination. */
@@ -117,6 +119,7 @@ function iterate(system: System, w: Workspace, y: Float64Array, limit: number, e
   let forcing = 0.03;
   while (!converged && iterations < limit && Number.isFinite(norm)) {
     iterations++;
+    system.watch?.(norm);
     if (!system.step(y, w.f, 0, forcing, w.step)) break;
     const relative = relativeStep(w.step, y, enough);
     // Near the end rounding decides whether the residual still falls: full steps are then taken as they are.
@@ -138,6 +141,7 @@ function settle(system: System, w: Workspace, y: Float64Array, limit: number): v
   if (!Number.isFinite(least)) return;
   let pace = least;
   for (let k = 0; k < limit && norm > 1e-12; k++) {
+    system.watch?.(norm);
     if (!system.step(y, w.f, 1 / pace, 1e-3, w.step)) return;
     const next = take(system, w, y, 1);
     if (next === undefined) {

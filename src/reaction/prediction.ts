@@ -1,12 +1,14 @@
 import type { Plant } from "../compile/plant.js";
 import type { Duty } from "../model/duty.js";
 import { exitCurve } from "../simulate/exit-curve.js";
+import { untraceable } from "../simulate/trace.js";
 import { type MixingBounds, mixingBounds, positionBetween } from "./bounds.js";
 import { conditionsOf, type DutySettings } from "./conditions.js";
 import { exitAge } from "./exit-age.js";
 import { type Figure, figuresOf, meanFeed, speciesFigure } from "./figures.js";
-import { type Premises, unknownPremises } from "./premises.js";
+import { noCurve, type Premises, unknownPremises } from "./premises.js";
 import { type SteadyState, steadyState } from "./steady.js";
+import type { SteadyProgress } from "./walk.js";
 
 /** What a vessel does at a duty, and what its exit-age curve alone would allow. */
 export interface Prediction {
@@ -26,16 +28,27 @@ export interface FigureBounds {
   readonly position: number | undefined;
 }
 
+/** Nodes up to which the exit-age curve is computed for the bounds: finely, it takes many runs of the engine. */
+const mostBounded = 5000;
+
 /**
  * Steady state, figures and bounds of a duty in a plant compiled at the duty's flows (`networkSettings`).
  * @param settings values in place of the duty's (`DutySettings`)
  */
-export function predict(plant: Plant, duty: Duty, settings: DutySettings = {}): Prediction {
+export function predict(
+  plant: Plant,
+  duty: Duty,
+  settings: DutySettings = {},
+  progress?: (solved: SteadyProgress) => void,
+): Prediction {
   const { chemistry } = duty;
-  const state = steadyState(plant, chemistry, duty, settings);
+  const state = steadyState(plant, chemistry, duty, settings, progress);
   const figures = figuresOf(plant, duty, state, settings);
   if (!chemistry || chemistry.reactions.length === 0) {
     return { state, figures, bounds: figures.map(() => undefined), premises: undefined };
+  }
+  if (plant.columns.size > mostBounded || untraceable(plant).length > 0) {
+    return { state, figures, bounds: figures.map(() => undefined), premises: figures.length > 0 ? noCurve : undefined };
   }
   const conditions = conditionsOf(plant, chemistry, duty, settings);
   const known = new Map<string | undefined, MixingBounds | undefined>();

@@ -18,6 +18,13 @@ export const unknownPremises: Premises = {
   says: "The bounds were not computed: a rate law asks for its reactant even when that has run out (zero order), or is too steep.",
 };
 
+/** Where the plant is too large for its curve. */
+export const noCurve: Premises = {
+  bound: "not checked",
+  rate: "not checked",
+  says: "The bounds were not computed: the network has more cells than their exit-age curve is worked out for.",
+};
+
 const samples = 200;
 
 /**

@@ -13,6 +13,14 @@ const mostEliminated = 200;
 /** Where iteration fails, elimination is tried up to here. */
 const mostTried = 2000;
 
+/** How far the solution of many nodes that feed one another has come. */
+export interface SteadyProgress {
+  /** Nodes that are solved together. */
+  readonly together: number;
+  /** What their balances still miss, in the mean, as a share of the concentration scale. */
+  readonly missing: number;
+}
+
 /** A steady state as far as it has come: filled group by group, downstream. Scaled concentrations, node by node. */
 export class Walk {
   readonly y: Float64Array;
@@ -32,6 +40,7 @@ export class Walk {
   constructor(
     private readonly plant: Plant,
     private readonly conditions: Conditions,
+    private readonly progress: ((solved: SteadyProgress) => void) | undefined,
   ) {
     const { columns, feeds, to } = plant;
     const n = conditions.species.length;
@@ -148,7 +157,10 @@ export class Walk {
       part: Uint8Array.from(nodes, (node) => part[node]),
       bodies,
     };
-    return solveCircle(circle, this.conditions.reactions, this.conserved);
+    const watch =
+      this.progress &&
+      ((norm: number) => this.progress?.({ together: nodes.length, missing: norm / Math.sqrt(nodes.length) }));
+    return solveCircle(circle, this.conditions.reactions, this.conserved, watch);
   }
 
   /** Writes the mean concentration that reaches a node from outside the group at hand into mix[at ...], in units of its whole inflow. */
