@@ -121,8 +121,8 @@ export interface Prediction {
   readonly bounds?: { readonly segregated: number; readonly maximumMixedness: number };
   /** Why there are no bounds, or what follows from where the value lies between them. */
   readonly boundsSay?: string;
-  /** Which input holds most of the variance: "k2 (71 %)". */
-  readonly drivenBy?: string;
+  /** Which inputs the spread goes with, most first; shares 0 to 1. */
+  readonly drivers?: readonly { readonly name: string; readonly share: number }[];
 }
 
 export interface Change {

@@ -9,6 +9,7 @@ import { predict } from "../reaction/prediction.js";
 import { steadyState } from "../reaction/steady.js";
 import { declaredDraws } from "./draws.js";
 import type { RivalDraws } from "./draws-of.js";
+import { driversOf } from "./drivers.js";
 import type { Bounds, Prediction, Ranked } from "./result.js";
 import { interval95 } from "./spread.js";
 
@@ -19,6 +20,7 @@ export function predictDuty(ranked: Ranked, duty: Duty, draws: RivalDraws, seed:
   if (!plant) return [];
   const { state, figures, bounds, premises } = predict(plant, duty);
   const sampled = sampledFigures(network, duty, draws.settings, seed);
+  const varied = sampledInputs(network, duty, draws.settings, seed);
   return figures.map((f, k): Prediction => {
     const b = bounds[k];
     const within: Bounds | undefined = b && {
@@ -36,6 +38,10 @@ export function predictDuty(ranked: Ranked, duty: Duty, draws: RivalDraws, seed:
       unit: f.unit,
       interval95: interval95(sampled.map((s) => s?.[k] ?? Number.NaN)),
       bounds: within,
+      drivers: driversOf(
+        varied,
+        sampled.map((s) => s?.[k]),
+      ),
       steady: state,
     };
   });
@@ -57,6 +63,13 @@ export function sampledFigures(
     const plant = plantFor(network, duty, settings, days[i]);
     return plant && figuresAt(plant, duty, nonNegative(inputs[i]));
   });
+}
+
+/** All that varies from draw to draw, by name: what the fit leaves open, then what duty and network declare with `±`. */
+function sampledInputs(network: Network, duty: Duty, draws: readonly Settings[], seed: number): Settings[] {
+  const inputs = declaredDraws(dutyInputs(duty.chemistry, duty), draws.length, seed);
+  const days = declaredDraws(declaredFlows(network, duty), draws.length, seed);
+  return draws.map((settings, i) => ({ ...settings, ...days[i], ...inputs[i] }));
 }
 
 /** A network compiled at a duty's flows; `day` holds drawn flows. */

@@ -187,14 +187,17 @@ export const demo: StudyReport = {
       estimate: { value: 82.31, unit: "%", low: 80.12, high: 84.23 },
       bounds: { segregated: 83.5, maximumMixedness: 80.9 },
       boundsSay: "half way: mixing matters little",
-      drivenBy: "k2 (71 %)",
+      drivers: [
+        { name: "k2", share: 0.71 },
+        { name: "corner", share: 0.2 },
+      ],
     },
     {
       duty: "15 % up",
       name: "conversion of A",
       estimate: { value: 79.4, unit: "%", low: 76.9, high: 81.6 },
       bounds: { segregated: 80.4, maximumMixedness: 77.7 },
-      drivenBy: "k2 (68 %)",
+      drivers: [{ name: "k2", share: 0.68 }],
     },
   ],
   changes: [

@@ -39,7 +39,7 @@ function rankedJson({ rival, fit, standing, survives, problems }: Ranked): objec
   };
 }
 
-function predictionJson({ duty, rival, name, value, unit, interval95, bounds }: Prediction): object {
+function predictionJson({ duty, rival, name, value, unit, interval95, bounds, drivers }: Prediction): object {
   return {
     duty: duty.title,
     network: rival.path,
@@ -47,6 +47,7 @@ function predictionJson({ duty, rival, name, value, unit, interval95, bounds }: 
     ...quantity(value, unit),
     interval95: intervalJson(interval95, unit),
     bounds: bounds ? boundsJson(bounds, unit) : null,
+    drivers,
   };
 }
 

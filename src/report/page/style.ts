@@ -37,7 +37,8 @@ caption{text-align:left;font-size:.9rem;padding-bottom:.35rem}
 th,td{text-align:left;vertical-align:baseline;padding:.32rem 1.1rem .32rem 0;border-bottom:1px solid var(--bm-faint)}
 thead th{font-size:.85rem;color:var(--bm-quiet);font-weight:700;border-bottom:1.5px solid var(--bm-quiet);vertical-align:bottom}
 tbody th{font-weight:700}
-.number{text-align:right;white-space:nowrap}
+.number{text-align:right}
+tbody .number{white-space:nowrap}
 dl{margin:.6rem 0}
 dt{font-weight:700;margin-top:.6rem}
 dd{margin:0;max-width:46rem}
@@ -62,7 +63,7 @@ nav,.tools,.told{display:none}
 h1{font-size:17pt}
 h2{margin-top:1.4rem;break-after:avoid}
 h3,caption{break-after:avoid}
-figure,tr,.finding,.answer,dt{break-inside:avoid}
+figure,tr,.wide,.finding,.answer,dt{break-inside:avoid}
 figure svg{max-height:120mm}
 .wide{overflow:visible}
 thead{display:table-header-group}

@@ -1,3 +1,4 @@
+import { plotBars } from "../../draw/bars.js";
 import { drawIntervals, type IntervalRow, intervalsTable } from "../../draw/intervals.js";
 import { formatNumber } from "../../units/format.js";
 import { estimateLine } from "../digits.js";
@@ -7,7 +8,7 @@ import { estimateRow, grouped } from "./rows.js";
 
 /** What the vessel makes under each duty: value, interval, where mixing would put it. */
 export function predictionsSection({ predictions }: StudyReport): Html {
-  const driven = predictions.some((p) => p.drivenBy !== undefined);
+  const driven = predictions.some((p) => (p.drivers?.length ?? 0) > 0);
   const rows = predictions.map((p) => {
     const { bounds, boundsSay } = p;
     const between = bounds
@@ -17,7 +18,7 @@ export function predictionsSection({ predictions }: StudyReport): Html {
       { words: p.duty, under: p.name },
       ...estimateRow("", p.estimate).slice(1),
       bounds && boundsSay ? { words: between, under: boundsSay } : between,
-      ...(driven ? [p.drivenBy ?? ""] : []),
+      ...(driven ? [driverWords(p)] : []),
     ];
   });
   const columns = [
@@ -25,7 +26,7 @@ export function predictionsSection({ predictions }: StudyReport): Html {
     { head: "value", number: true },
     { head: "95 % interval", number: true },
     { head: "segregated to maximum mixedness" },
-    ...(driven ? [{ head: "most of the spread from" }] : []),
+    ...(driven ? [{ head: "the spread goes with" }] : []),
   ];
   const drawn = grouped(predictions, (p) => `${p.name}, ${p.estimate.unit}`).map(([quantity, list], k) => {
     const intervals = { title: quantity, quantity, rows: list.flatMap(predictionRow) };
@@ -38,7 +39,35 @@ export function predictionsSection({ predictions }: StudyReport): Html {
         : `${quantity}: value and 95 % interval.`,
     });
   });
-  return section("predictions", "What it makes", [...drawn, table("Predictions", columns, rows)]);
+  return section("predictions", "What it makes", [
+    ...drawn,
+    table("Predictions", columns, rows),
+    ...spreads(predictions),
+  ]);
+}
+
+/** "k2 (71 %), corner (20 %)" */
+const driverWords = ({ drivers = [] }: Prediction): string =>
+  drivers
+    .slice(0, 2)
+    .map((d) => `${d.name} (${Math.round(100 * d.share)}\u2009%)`)
+    .join(", ");
+
+const mostSpreads = 3;
+const mostDrivers = 6;
+
+/** What to measure better to narrow an interval: one picture each for the first predictions that have several inputs. */
+function spreads(predictions: readonly Prediction[]): Html[] {
+  const told = predictions.filter((p) => (p.drivers?.length ?? 0) > 1).slice(0, mostSpreads);
+  return told.map((p, k) => {
+    const title = `${p.duty}: what the spread of ${p.name} goes with`;
+    const rows = (p.drivers ?? []).slice(0, mostDrivers).map((d) => ({ label: d.name, percent: 100 * d.share }));
+    return figure({
+      name: `spread-${k + 1}`,
+      ...plotBars({ title, quantity: "share of the spread that goes with it, %", rows }, { untitled: true }),
+      caption: `${title} (squared rank correlation over the draws; inputs that move together share what they hold). Measure the first better to narrow the interval.`,
+    });
+  });
 }
 
 function predictionRow(p: Prediction): readonly IntervalRow[] {

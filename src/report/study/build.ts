@@ -108,6 +108,7 @@ function predictionRow(p: StudyResult["predictions"][number]): Prediction {
       ? { bounds: { segregated: inUnit(b.segregated, unit), maximumMixedness: inUnit(b.maximumMixedness, unit) } }
       : {}),
     ...(b?.says ? { boundsSay: b.says } : {}),
+    drivers: p.drivers,
   };
 }
 
