@@ -4,12 +4,21 @@ import { line, text } from "../svg/marks.js";
 import { textWidth } from "../svg/measure.js";
 import type { Box, Svg } from "../svg/svg.js";
 import { formatNumber } from "../units/format.js";
+import { raised, typeset } from "./scale.js";
 
 /** From numbers to px along one side of a plot. */
 export interface Axis {
   readonly at: (value: number) => number;
   readonly domain: readonly [number, number];
   readonly ticks: readonly number[];
+  /** Decades, told as powers of ten where the numbers would be long. */
+  readonly log?: boolean;
+}
+
+/** What stands at the ticks. */
+function tickWords({ ticks, log }: Axis): readonly string[] {
+  const long = log && ticks.some((t) => t < 0.000_99 || t > 9_999);
+  return ticks.map((t) => (long ? `10${raised(String(Math.round(Math.log10(t))))}` : typeset(formatNumber(t))));
 }
 
 /** A linear axis over all values, its ends at round numbers. Values that are no numbers are passed over. */
@@ -31,7 +40,7 @@ export function logAxis(values: Iterable<number>, range: readonly [number, numbe
   const [from, to] = scale.domain();
   const steps = Math.round(Math.log10(to / from));
   const ticks = Array.from({ length: steps + 1 }, (_, k) => from * 10 ** k);
-  return { at: (v) => scale(Math.min(to, Math.max(from, v))), domain: [from, to], ticks };
+  return { at: (v) => scale(Math.min(to, Math.max(from, v))), domain: [from, to], ticks, log: true };
 }
 
 /** The horizontal axis below a plot with its words, such as "time, min". `bare` leaves numbers and words out. */
@@ -39,10 +48,11 @@ export function bottomAxis(axis: Axis, plot: Box, words: string, bare = false): 
   const y = plot.y + plot.height;
   const parts = [line(plot.x, y, plot.x + plot.width, y, "axis")];
   let free = Number.NEGATIVE_INFINITY;
-  for (const tick of axis.ticks) {
+  const labels = tickWords(axis);
+  for (const [k, tick] of axis.ticks.entries()) {
     const x = axis.at(tick);
     parts.push(line(x, y, x, y + 4, "axis"));
-    const label = formatNumber(tick);
+    const label = labels[k];
     const half = textWidth(label, 11) / 2;
     if (bare || x - half < free + 4) continue;
     parts.push(text(x, y + 16, label, "quiet", "middle"));
@@ -54,9 +64,10 @@ export function bottomAxis(axis: Axis, plot: Box, words: string, bare = false): 
 
 /** The vertical axis left of a plot: faint lines across, numbers, and its words on top. */
 export function leftAxis(axis: Axis, plot: Box, words: string): Svg {
-  const parts = axis.ticks.flatMap((tick) => [
+  const labels = tickWords(axis);
+  const parts = axis.ticks.flatMap((tick, k) => [
     line(plot.x, axis.at(tick), plot.x + plot.width, axis.at(tick), "grid"),
-    text(plot.x - 6, axis.at(tick) + 3.5, formatNumber(tick), "quiet", "end"),
+    text(plot.x - 6, axis.at(tick) + 3.5, labels[k], "quiet", "end"),
   ]);
   const wide = leftRoom(axis) - 6;
   return [...parts, words === "" ? "" : text(plot.x - wide, plot.y - 9, words, "quiet")].join("");
@@ -64,7 +75,7 @@ export function leftAxis(axis: Axis, plot: Box, words: string): Svg {
 
 /** Room that the numbers left of a plot need, px. */
 export const leftRoom = (axis: Axis): number =>
-  Math.max(0, ...axis.ticks.map((t) => textWidth(formatNumber(t), 11))) + 8;
+  Math.max(0, ...tickWords(axis).map((words) => textWidth(words, 11))) + 8;
 
 function spread(values: Iterable<number>): [number, number] {
   const [low, high] = extent([...values].filter(Number.isFinite));

@@ -68,7 +68,8 @@ export function typeset(written: string): string {
     .replace(/([\d\u2070-\u2079⁰¹²³]) (?=[A-Za-zµ°%])/g, "$1\u2009");
 }
 
-const raised = (power: string): string => [...power.replace("+", "")].map((c) => superscripts[c] ?? c).join("");
+/** A power set high: 10⁻⁵. */
+export const raised = (power: string): string => [...power.replace("+", "")].map((c) => superscripts[c] ?? c).join("");
 
 const superscripts: Readonly<Record<string, string>> = Object.fromEntries(
   [..."0123456789-\u2212"].map((c, k) => [c, [..."⁰¹²³⁴⁵⁶⁷⁸⁹⁻⁻"][k]]),

@@ -53,7 +53,7 @@ const driverWords = ({ drivers = [] }: Prediction): string =>
     .map((d) => `${d.name} (${Math.round(100 * d.share)}\u2009%)`)
     .join(", ");
 
-const mostSpreads = 3;
+const mostSpreads = 2;
 const mostDrivers = 6;
 
 /** What to measure better to narrow an interval: one picture each for the first predictions that have several inputs. */
