@@ -2,6 +2,7 @@ import type { Plant } from "../compile/plant.js";
 import { isCellsOnly } from "../simulate/cell-system.js";
 import { chebyshev } from "../simulate/chebyshev.js";
 import { exact } from "../simulate/exact.js";
+import { krylov } from "../simulate/krylov.js";
 import { laplace } from "../simulate/laplace.js";
 import { ode } from "../simulate/ode.js";
 import { type AnyEngine, engineFor } from "../simulate/trace.js";
@@ -10,15 +11,19 @@ import { UsageError } from "./usage.js";
 
 /** The engine by its name; `auto` is the one that suits the plant and the last time asked, s. */
 export function engineNamed(name: SimulateOptions["engine"], plant: Plant, until: number): AnyEngine {
-  const named = { auto: undefined, exact, ode, laplace, chebyshev }[name];
-  if (named === chebyshev && !isCellsOnly(plant)) {
-    throw new UsageError("--engine chebyshev is for stirred bodies and junctions alone; auto takes one that suits");
+  const named = { auto: undefined, exact, ode, laplace, chebyshev, krylov }[name];
+  if ((named === chebyshev || named === krylov) && !isCellsOnly(plant)) {
+    throw new UsageError(`--engine ${name} is for stirred bodies and junctions alone; auto takes one that suits`);
   }
   return named ?? engineFor(plant, until);
 }
 
-/** An independent engine to check another by. */
-export const engineBeside = (engine: AnyEngine, plant: Plant): AnyEngine => (engine === ode ? engineFor(plant) : ode);
+/** An independent engine to check another by: integration in time, or for large networks the other of their two ways. */
+export function engineBeside(engine: AnyEngine, plant: Plant): AnyEngine {
+  if (engine === chebyshev) return krylov;
+  if (engine === krylov) return chebyshev;
+  return engine === ode ? engineFor(plant) : ode;
+}
 
 /** Largest difference between two sets of curves, as a fraction of the largest value of the first. */
 export function largestDifference(a: readonly Float64Array[], b: readonly Float64Array[]): number {

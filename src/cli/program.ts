@@ -106,7 +106,7 @@ function addSimulate(root: Command, { perform, inputs, io }: Stage): void {
     .option("--times <list>", 'the times themselves, such as "0.5, 1, 2.5 min"')
     .addOption(
       new Option("--engine <name>", "how to integrate")
-        .choices(["auto", "exact", "ode", "laplace", "chebyshev"])
+        .choices(["auto", "exact", "ode", "laplace", "chebyshev", "krylov"])
         .default("auto"),
     )
     .option("--verify", "run a second engine and print the largest difference")

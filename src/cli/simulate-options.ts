@@ -9,7 +9,7 @@ export interface SimulateOptions extends TimeOptions {
   readonly at?: readonly string[];
   readonly follows?: string;
   readonly set?: readonly string[];
-  readonly engine: "auto" | "exact" | "ode" | "laplace" | "chebyshev";
+  readonly engine: "auto" | "exact" | "ode" | "laplace" | "chebyshev" | "krylov";
   readonly verify?: true;
   readonly output?: string;
 }

@@ -33,6 +33,7 @@ export class EllipseFlow {
    * @param unknowns to look at; the sum of all tracer is looked at besides, under their number
    * @param volume   of each state
    * @param weight   of each state in the norm by which it is told when to stop: its volume where it has one, above 0
+   * @param watch    told after each block how many there are; true ends the work, and sums then are what they are
    */
   constructor(
     private readonly rows: MixedRows,
@@ -41,6 +42,7 @@ export class EllipseFlow {
     unknowns: readonly number[],
     private readonly volume: Float64Array,
     private readonly weight = volume,
+    private readonly watch: (made: number) => boolean = () => false,
   ) {
     const { states, start: begin, column, value } = rows;
     const { half: a, height: b } = ellipse;
@@ -70,7 +72,10 @@ export class EllipseFlow {
     const of = this.looks[look];
     let sum = 0;
     for (let k = 0; k < c.length; k++) {
-      if (k === this.made) this.make();
+      if (k === this.made) {
+        if (this.watch(k)) break;
+        this.make();
+      }
       const term = c[k] * of.scalars[k];
       sum += term;
       if (Math.abs(term) > largest.term) largest.term = Math.abs(term);

@@ -8,6 +8,7 @@ import { isCellsOnly } from "./cell-system.js";
 import { chebyshev } from "./chebyshev.js";
 import type { Entry } from "./entry.js";
 import { exact } from "./exact.js";
+import { krylov } from "./krylov.js";
 import { laplace } from "./laplace.js";
 import type { TracerEngine } from "./linear-system.js";
 import { balanceAt, see } from "./respond.js";
@@ -20,8 +21,11 @@ export type AnyEngine = TracerEngine | TracerWay;
 /** Passes through tubes of a closed vessel that the exact engine follows one by one; beyond, laplace takes them together. */
 const fewPasses = 60;
 
-/** More nodes than these, and a series for large networks takes over. */
+/** More nodes than these, and the ways for large networks take over. */
 const small = 400;
+/** Where the fastest cell is so much faster than the mean one, and empties so often in all, solves cost less than products. */
+const farApart = 50;
+const manyTurns = 30_000;
 
 /**
  * The exact engine for cells, tubes and junctions alone, one for large networks where there are many; laplace for plants with other bodies, and where tracer goes round
@@ -29,9 +33,22 @@ const small = 400;
  * @param horizon s; nothing later is asked
  */
 export function engineFor(plant: Plant, horizon = 0): AnyEngine {
-  const { part, size } = plant.columns;
+  const { part } = plant.columns;
   if (part.includes(Part.Block) || (isClosed(plant) && passesIn(plant, horizon) > fewPasses)) return laplace;
-  return size > small && isCellsOnly(plant) ? chebyshev : exact;
+  return isLarge(plant) ? largeEngine(plant, horizon) : exact;
+}
+
+/** For many cells: one series where their rates lie near each other, a space of solves where they are far apart. */
+function largeEngine({ columns, feeds, volume }: Plant, horizon: number): AnyEngine {
+  let [fastest, through] = [0, 0];
+  for (let i = 0; i < columns.size; i++) {
+    if (columns.part[i] !== Part.Cell) continue;
+    fastest = Math.max(fastest, columns.inflow[i] / columns.volume[i]);
+    through += columns.inflow[i];
+  }
+  const fed = feeds.reduce((sum, f) => sum + f.flow, 0);
+  const span = horizon > 0 ? horizon : fed > 0 ? (3 * volume.active) / fed : 0;
+  return fastest * volume.active > farApart * through && fastest * span > manyTurns ? krylov : chebyshev;
 }
 
 /** How often tracer may pass the shortest tube. */
@@ -41,9 +58,11 @@ function passesIn({ columns: { size, part, volume, inflow } }: Plant, horizon: n
   return most;
 }
 
+const isLarge = (plant: Plant): boolean => plant.columns.size > small && isCellsOnly(plant);
+
 /** Why no engine follows tracer through a plant: too many nodes. */
 export const untraceable = (plant: Plant): Problem[] =>
-  engineFor(plant) === chebyshev ? [] : uncarried(plant, engineFor(plant) === laplace ? "laplace" : "tracer");
+  isLarge(plant) ? [] : uncarried(plant, engineFor(plant) === laplace ? "laplace" : "tracer");
 
 /**
  * Follows tracer through a plant with an engine.
