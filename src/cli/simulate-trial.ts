@@ -42,7 +42,8 @@ export function simulateTrial(network: Network, options: SimulateOptions, { inpu
   const origin = Math.min(...starts, ...(trial.contents ? [trial.contents.begins] : []));
   const clock = clockFrom(options, network.units.time, () => lastTime(plant, trial, origin));
   const wanted = trial.readings.map(() => ({ time: clock.si.map((t) => t + origin) }));
-  const engine = engineNamed(options.engine, plant, clock.si[clock.si.length - 1]);
+  const varying = (trial.flowLogs?.size ?? 0) > 0 && options.engine === "auto";
+  const engine = engineNamed(varying ? "ode" : options.engine, plant, clock.si[clock.si.length - 1]);
   const curves = trialResponse(plant, trial, wanted, engine);
   const beside = engineBeside(engine, plant);
   const other = options.verify ? trialResponse(plant, trial, wanted, beside) : undefined;

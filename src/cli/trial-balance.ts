@@ -2,8 +2,9 @@ import type { Plant } from "../compile/plant.js";
 import type { Trial } from "../model/trial.js";
 import { putsOf } from "../simulate/puts.js";
 import type { Balance } from "../simulate/respond.js";
-import { type AnyEngine, trace } from "../simulate/trace.js";
+import type { AnyEngine } from "../simulate/trace.js";
 import { tracerPlant } from "../simulate/tracer-plant.js";
+import { trialTracing } from "../simulate/trial-tracing.js";
 import { dimensionName, dimensions, times } from "../units/dimension.js";
 import type { Unit } from "../units/unit.js";
 
@@ -22,10 +23,11 @@ export function trialBalance(
   const unit = amountUnit(plant, trial);
   if (!unit || trial.tracer?.decay || trial.tracer?.loss) return undefined;
   const sum = { injected: 0, left: 0, inside: 0 };
-  for (const { entry, start, drive, still } of putsOf(plant, trial)) {
+  for (const put of putsOf(plant, trial)) {
+    const { start, drive, still } = put;
     const span = until - start;
     if (!(span > 0)) continue;
-    const part = trace(plant, entry, span, engine).balance(drive, span);
+    const part = trialTracing(plant, trial, put, span, engine).balance(drive, span);
     const held = still?.amount ?? 0;
     sum.injected += part.injected + held;
     sum.left += part.left;

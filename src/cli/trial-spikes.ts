@@ -1,7 +1,8 @@
 import type { Plant } from "../compile/plant.js";
 import type { Reading, Trial } from "../model/trial.js";
-import { trace } from "../simulate/trace.js";
+import { instant } from "../simulate/linear-system.js";
 import { tracerPlant } from "../simulate/tracer-plant.js";
+import { trialTracing } from "../simulate/trial-tracing.js";
 
 /** Undispersed tracer at a probe: when (s on the trial's clock) and how much (concentration times s). SI. */
 export interface TrialSpike {
@@ -29,7 +30,8 @@ export function trialSpikes(liquid: Plant, trial: Trial, reading: Reading, until
       const node = plant.exit.get(name);
       if (node === undefined) return [];
       const least = (smallest * amount) / plant.nodes[node].inflow;
-      return trace(plant, entry, until - start)
+      const put = { entry, start, drive: instant(amount), before: 0 };
+      return trialTracing(plant, trial, put, until - start)
         .passagesAt(node)
         .map((p) => ({
           time: start + p.delay + line,

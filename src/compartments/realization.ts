@@ -28,6 +28,42 @@ export interface Realization {
   readonly steadyOnly?: true;
 }
 
+/** Everything so many times as slow: s times the factor for s. */
+export function slowedRealization(r: Realization, factor: number): Realization {
+  const slower = (a: SparseRows): SparseRows => ({ ...a, value: a.value.map((x) => x / factor) });
+  return {
+    ...r,
+    delay: r.delay * factor,
+    through: slower(r.through),
+    still: slower(r.still),
+    input: r.input.map((b) => b / factor),
+    held: r.held.map((g) => g * factor),
+  };
+}
+
+/**
+ * s + loss for s, what leaves then times `kept`: states fade by the loss. What is held is not told: it does not all leave.
+ * @param loss 1/s
+ */
+export function lossyRealization(r: Realization, loss: number, kept: number): Realization {
+  const rows = r.input.length;
+  const still = Array.from({ length: rows }, (_, i) => {
+    const row = new Map<number, number>([[i, -loss]]);
+    for (let k = r.still.start[i]; k < r.still.start[i + 1]; k++) {
+      row.set(r.still.column[k], (row.get(r.still.column[k]) ?? 0) + r.still.value[k]);
+    }
+    return row;
+  });
+  return {
+    ...r,
+    still: sparseRows(still),
+    output: r.output.map((c) => c * kept),
+    direct: r.direct * kept,
+    held: new Float64Array(rows).fill(Number.NaN),
+    steadyOnly: true,
+  };
+}
+
 /** The same in a body of volume 1 at a flow of 1, without pockets: dx/dv = A x + b u, v the volume displaced. */
 export interface UnitRealization {
   readonly rates: readonly ReadonlyMap<number, number>[];

@@ -32,7 +32,7 @@ function compileWith(
 ): { plant: Plant | undefined; problems: Problem[] } {
   const { env, volumes, flows, problems } = balance(network, settings, plan);
   if (!flows || problems.length > 0) return { plant: undefined, problems };
-  return { plant: plantOf(network, env, volumes, flows, known), problems };
+  return { plant: plantOf(network, settings, env, volumes, flows, known), problems };
 }
 
 /** `compile` for many settings of one network: what does not depend on values is found once. */
@@ -125,6 +125,7 @@ function balance(network: Network, settings: Settings, plan?: FlowPlan) {
 
 function plantOf(
   network: Network,
+  settings: Settings,
   env: Float64Array,
   volumes: Float64Array,
   flows: Flows,
@@ -149,6 +150,7 @@ function plantOf(
   const offset = network.feeds.length + network.compartments.length;
   return {
     network,
+    settings,
     env,
     get nodes() {
       made ??= nodes.nodes(inflow);

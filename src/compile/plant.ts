@@ -13,6 +13,8 @@ export interface Plant {
   readonly network: Network;
   /** Values of all names, one slot each. */
   readonly env: Float64Array;
+  /** What it was compiled with in place of the file's values. */
+  readonly settings?: Settings;
   readonly nodes: readonly PlantNode[];
   /** The same as columns, by node: for plants of many cells, where `nodes` is better left unasked (it is made when asked for). */
   readonly columns: NodeColumns;

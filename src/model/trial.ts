@@ -16,6 +16,8 @@ export interface Trial {
   readonly vesselAt?: Span | undefined;
   /** Flows of the day by feed name. */
   readonly flows: ReadonlyMap<string, Value>;
+  /** Flows that varied, m3/s on the trial's clock, by feed; `flows` then holds their means. */
+  readonly flowLogs?: ReadonlyMap<string, Series>;
   /** Constants that the day set otherwise. */
   readonly with: ReadonlyMap<string, Value>;
   readonly injections: readonly Injection[];

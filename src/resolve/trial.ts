@@ -1,4 +1,4 @@
-import type { Trial } from "../model/trial.js";
+import type { Series, Trial } from "../model/trial.js";
 import type { Value } from "../model/value.js";
 import type { Report } from "../problems/report.js";
 import type { Files } from "../read/files.js";
@@ -7,6 +7,7 @@ import { child, entriesOf, itemsOf, type MapNode, type Tree, textOf } from "../r
 import { type Dimension, dimensions } from "../units/dimension.js";
 import type { Unit } from "../units/unit.js";
 import { resolveContents } from "./contents.js";
+import { meanFlow, resolveFlowLog } from "./flow-log.js";
 import { resolveInjection, signalNode } from "./injection.js";
 import { resolveReading } from "./reading.js";
 import { aboveZero } from "./sign.js";
@@ -38,7 +39,12 @@ export function resolveTrial(
   };
   const readTables = readingNodes.map(table);
   const inletTables = injectionNodes.map((node) => table(signalNode(node)));
-  const tables = [...readTables, ...inletTables].filter((t) => t !== undefined);
+  const logTables = entriesOf(child(tree, "flows")).flatMap(({ key, value }) => {
+    if (value.type !== "map") return [];
+    const log = resolveFlowLog(key.text, value, files, report);
+    return [{ feed: key.text, at: key.at, log }];
+  });
+  const tables = [...readTables, ...inletTables, ...logTables.map((l) => l.log)].filter((t) => t !== undefined);
   const clock = trialClock(tables);
   const title = child(tree, "trial");
   if (!oneClock(tables, report)) return undefined;
@@ -59,6 +65,14 @@ export function resolveTrial(
     return missing ? undefined : reading;
   });
   const flows = values(child(tree, "flows"), dimensions.flow, scope, report);
+  const flowLogs = new Map<string, Series>();
+  for (const { feed, at, log } of logTables) {
+    const moved = onClock(log);
+    if (!moved) continue;
+    flowLogs.set(feed, moved.series);
+    flows.set(feed, meanFlow(moved.series, at));
+  }
+  if (logTables.some(({ log }) => !log)) return undefined;
   for (const flow of flows.values()) if (flow.uses.length === 0) aboveZero("the flow of a feed", flow, true, report);
   const settings = values(child(tree, "with"), "any", scope, report);
   const tracer = resolveTracer(child(tree, "tracer"), report);
@@ -73,6 +87,7 @@ export function resolveTrial(
     vessel: vesselPath(child(tree, "vessel")),
     vesselAt: child(tree, "vessel")?.at,
     flows,
+    ...(flowLogs.size > 0 ? { flowLogs } : {}),
     with: settings,
     injections: injections.filter((part) => part !== undefined),
     ...(contents ? { contents } : {}),
@@ -92,6 +107,7 @@ const mapsOf = (node: Tree | undefined): MapNode[] =>
 function values(node: Tree | undefined, wanted: Dimension | "any", scope: Scope, report: Report): Map<string, Value> {
   const found = new Map<string, Value>();
   for (const { key, value } of entriesOf(node)) {
+    if (value.type === "map") continue; // a table: read with the others
     const resolved = resolveValue(value, wanted, scope, report);
     if (resolved) found.set(key.text, resolved);
   }

@@ -1,4 +1,5 @@
 import { type Block, orders } from "../compartments/block.js";
+import { lossyRealization, slowedRealization } from "../compartments/realization.js";
 import { columnsOf } from "../compile/node-list.js";
 import { Part, type Plant, type PlantNode } from "../compile/plant.js";
 import { plantFollowing } from "../compile/sends.js";
@@ -128,6 +129,10 @@ function slowed(block: Block, factor: number): Block {
     undelayed: (s, flow) => block.undelayed(at(s), flow),
     spread: (s, flow) => block.spread(at(s), flow),
     series: (flow) => block.series(flow).map((c, k) => c * factor ** k),
+    realize: (flow) => {
+      const r = block.realize(flow);
+      return r && slowedRealization(r, factor);
+    },
   };
 }
 
@@ -143,6 +148,10 @@ function lossy(block: Block, loss: number, kept: number): Block {
     direct: (flow) => block.direct(flow) * late(flow),
     spread: (s, flow) => complex.scale(block.spread(at(s), flow), late(flow)),
     series: (flow) => taylorAt(transfer, loss / 2, flow),
+    realize: (flow) => {
+      const r = block.realize(flow);
+      return r && lossyRealization(r, loss, late(flow));
+    },
   };
 }
 

@@ -30,6 +30,7 @@ export const hasSlopes = (plant: Plant, trial: Trial): boolean =>
   !isClosed(plant) &&
   trial.contents === undefined &&
   trial.tracer === undefined &&
+  trial.flowLogs === undefined &&
   trial.readings.every((r) => r.places.length === 1);
 
 /**

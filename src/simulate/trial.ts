@@ -2,9 +2,10 @@ import type { Plant } from "../compile/plant.js";
 import type { Reading, Trial } from "../model/trial.js";
 import { moments } from "./moments.js";
 import { type Put, putsOf } from "./puts.js";
-import { type AnyEngine, trace } from "./trace.js";
+import type { AnyEngine } from "./trace.js";
 import { tracerPlant } from "./tracer-plant.js";
 import type { NodeLook, Tracing } from "./tracing.js";
+import { trialTracing } from "./trial-tracing.js";
 
 /**
  * What every probe of a trial would read, as concentration (SI) on the trial's clock: dose, flows and sample line as
@@ -48,7 +49,7 @@ function seenSingly(
   const decay = trial.tracer?.decay ?? 0;
   for (const put of putsOf(plant, trial, liquid)) {
     const own = wanted.map(({ time }) => new Float64Array(time.length));
-    const tracing = trace(plant, put.entry, last - put.start, engine);
+    const tracing = trialTracing(plant, trial, put, last - put.start, engine);
     const steady = typeof put.entry === "number" && put.before !== 0 ? moments(plant, put.entry) : [];
     const seenAt = trial.readings.map((reading) => seenBy(plant, reading));
     const looks = seenAt.map(({ node, delay, lag }, i): NodeLook => {

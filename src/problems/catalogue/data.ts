@@ -13,6 +13,26 @@ const cellFix = (separator: string): string =>
 
 /** Trials and the tables that they name. Places in a table are lines of the file, as an editor counts them. */
 export const dataEntries = {
+  "flow-log-negative": entry({
+    severity: "error",
+    says: (d: { feed: string; flow: string; row: number; file: string }) =>
+      `the flow of '${d.feed}' is ${d.flow} in row ${d.row} of ${d.file}: a feed does not flow back`,
+    fix: "correct the zero of the meter in a copy of the log, or leave that row's cell empty: a straight line bridges it",
+    example: { feed: "feed", flow: "-0.2 L/min", row: 17, file: "flow.csv" },
+  }),
+  "flow-log-zero": entry({
+    severity: "error",
+    says: (d: { feed: string; file: string }) => `nothing ever flows by the log of '${d.feed}', ${d.file}`,
+    fix: "name the column that holds the flow, or give the flow as a value",
+    example: { feed: "feed", file: "flow.csv" },
+  }),
+  "flow-log-gap": entry({
+    severity: "warning",
+    says: (d: { feed: string; from: string; to: string; row: number; file: string }) =>
+      `the log of '${d.feed}' has no row from ${d.from} to ${d.to} (after row ${d.row} of ${d.file})`,
+    fix: "nothing need be done where the flow was steady then: a straight line is drawn across; else add what is known of it",
+    example: { feed: "feed", from: "12 min", to: "47 min", row: 31, file: "flow.csv" },
+  }),
   "file-missing": entry<{ file: string }>({
     severity: "error",
     says: ({ file }) => `there is no file '${file}'`,

@@ -12,6 +12,19 @@ export const runEntries = {
         : "leave the choice of the engine to the tool, or ask for `--engine laplace` or `--engine ode`",
     example: { name: "core", is: "axial dispersion", engine: "exact" },
   }),
+  "flows-vary": entry({
+    severity: "error",
+    says: (d: { engine: string; feed: string }) =>
+      `the ${d.engine} engine needs steady flows, but the flow of '${d.feed}' is a log`,
+    fix: "leave the choice to the tool, or ask for `--engine ode`, without `--verify`: only the ode engine follows flows that vary",
+    example: { engine: "laplace", feed: "feed" },
+  }),
+  "flows-vary-body": entry({
+    severity: "error",
+    says: (d: { name: string; is: string }) => `'${d.name}' is ${d.is}, which cannot be followed while flows vary`,
+    fix: "use `kind: dispersed` with a large Péclet number and the same pockets, or a mean flow",
+    example: { name: "reach", is: "plug flow past stagnant pockets" },
+  }),
   "too-many-passes": entry({
     severity: "error",
     says: (_: Record<never, never>) =>

@@ -1,6 +1,19 @@
 import type { Shape } from "../shape.js";
 import { cleaning } from "./cleaning.js";
-import { choice, either, heading, list, name, named, oneOrMore, quantity, record, text } from "./common.js";
+import {
+  choice,
+  column,
+  csv,
+  either,
+  heading,
+  list,
+  name,
+  named,
+  oneOrMore,
+  quantity,
+  record,
+  text,
+} from "./common.js";
 
 const weighted: Shape = named({ is: "quantity", dimension: "ratio" }, "dotted");
 
@@ -69,6 +82,23 @@ const reading: Shape = record({
   },
 });
 
+const flowLog: Shape = record({
+  file: {
+    shape: text,
+    says: "The log, a CSV file relative to this one.",
+    required: true,
+    example: "flow.csv",
+  },
+  time: { ...cleaning.time, required: true },
+  value: {
+    shape: column("the flows"),
+    says: "The column of flows, with its unit. Rows without a value are bridged by a straight line.",
+    required: true,
+    example: "{column: Q, unit: m3/h}",
+  },
+  csv,
+});
+
 const injection: Shape = record(
   {
     at: {
@@ -127,9 +157,9 @@ export const trialShape = record({
     example: "v3.yaml",
   },
   flows: {
-    says: "Flows of the day by feed, where they were not those of the network. A `±` makes a flow an unknown of the fit, held by that.",
+    says: "Flows of the day by feed, where they were not those of the network. A `±` makes a flow an unknown of the fit, held by that. A flow that varied stands in a table: straight between its rows, before the first and after the last as there. Volumes are taken as constant; splits by share follow, fixed flows and exchanges stay, unless an expression makes them follow `feed.flow`. Such a trial is followed by the ode engine; figures that need one flow (recovery, space time) use the mean of the log.",
     example: "{feed: 10 L/min ± 2 %}",
-    shape: named(either(quantity("flow"), { is: "later", sort: "map", says: "a flow logged in a table" }), "dotted"),
+    shape: named(either(quantity("flow"), flowLog), "dotted"),
   },
   with: {
     shape: named(quantity(), "dotted"),
