@@ -125,6 +125,8 @@ const shownBy: Record<keyof typeof runEntries, string> = {
   "residuals-correlated": "fit/uncertainty.test.ts",
   "several-optima": "fit/run-codes.test.ts",
   "scale-not-positive": "fit/findings.test.ts",
+  "plan-many": "plan/plan.test.ts",
+  "plan-endless": "plan/plan.test.ts",
 };
 
 test.each(Object.entries(shownBy))("%s is shown by %s", (code, file) => {

@@ -22,6 +22,7 @@ export const layers = [
   "reaction",
   "data",
   "fit",
+  "plan",
   "study",
   "draw",
   "report",

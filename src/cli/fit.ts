@@ -1,14 +1,13 @@
 import { checkTrial } from "../check/trial.js";
 import { fit } from "../fit/fit.js";
 import type { Fit } from "../fit/result.js";
-import type { Network } from "../model/network.js";
 import { parseNetwork } from "../parse/network.js";
 import { parseTrial } from "../parse/trial.js";
 import { collector } from "../problems/report.js";
-import { nearest } from "../text/nearest.js";
 import { formatNumber } from "../units/format.js";
 import { inUnit, type Unit } from "../units/unit.js";
 import type { Context } from "./context.js";
+import { requireParameters } from "./free.js";
 import type { ExitStatus } from "./io.js";
 import { fitJson } from "./json/fit.js";
 import { InputError, type Outcome, UsageError } from "./outcome.js";
@@ -77,19 +76,6 @@ const pictureOf = ({ readings }: Fit, time: Unit, io: Context["io"]): string =>
       yUnit: r.unit.name,
     })),
   );
-
-function requireParameters(network: Network, free: readonly string[]): void {
-  const names = network.names.filter((n) => n.role === "parameter").map((n) => n.name);
-  if (free.length === 0) throw new UsageError("--free names no parameter");
-  for (const name of free) {
-    if (names.includes(name)) continue;
-    const near = nearest(name, names);
-    const help = near
-      ? `did you mean '${near}'?`
-      : `there ${names.length > 0 ? `are ${names.join(", ")}` : "are none"}`;
-    throw new UsageError(`--free: '${name}' is no parameter of this network; ${help}`);
-  }
-}
 
 /** A parameter that the data leave open: without a standard error, or part of a combination that they cannot tell. */
 const cannotBeTold = (fit: Fit): boolean =>

@@ -6,11 +6,11 @@ import type { Stage } from "./stage.js";
 import { version } from "./version.js";
 
 /** Commands of the language's contract that this version does not have. */
-const laterCommands = "sweep, plan, language-server".split(", ");
+const laterCommands = "sweep, language-server".split(", ");
 
 /** The commands that this version has. */
 export const commandNames: ReadonlySet<string> = new Set([
-  ...["check", "draw", "simulate", "moments", "fit", "study", "watch"],
+  ...["check", "draw", "simulate", "moments", "fit", "study", "plan", "watch"],
   ...libraryCommandNames,
 ]);
 
@@ -36,6 +36,7 @@ export function program(stage: Stage): Command {
   addMoments(root, stage);
   addFit(root, stage);
   addStudy(root, stage);
+  addPlan(root, stage);
   addWatch(root, stage);
   addLibraryCommands(root, stage);
   addOutside(root, stage);
@@ -149,6 +150,27 @@ function addFit(root: Command, { perform, inputs, io }: Stage): void {
       return (await import("./fit.js")).fitCommand(network, options, { inputs, io });
     }),
   );
+}
+
+function addPlan(root: Command, { perform, inputs, io }: Stage): void {
+  command(
+    root,
+    "plan <network>",
+    "a tracer test before it is run: amount, sampling times, end, and what it would tell",
+    [
+      "plan networks/demo/both.yaml --trial networks/demo/draft.yaml",
+      'plan networks/demo/both.yaml --trial networks/demo/draft.yaml --until "3 h" -o sheet.md',
+    ],
+  )
+    .requiredOption("--trial <file>", "the draft: a trial whose readings have no file, with their `noise:`")
+    .option("--free <names>", "parameters that the test is for, by commas (default: all)", collectNames)
+    .option("--until <time>", 'when to stop, such as "6 h" (default: when 98 % of the mean has been seen)')
+    .option("--samples <n>", "samples after the injection, at each reading", whole(5), 40)
+    .option("--every <time>", 'even samples of a logger, such as "10 s"')
+    .option("-o, --output <file>", "write the field sheet to F.md or F.html")
+    .action((network: string, options) =>
+      perform("plan", async () => (await import("./plan.js")).plan(network, options, { inputs, io })),
+    );
 }
 
 function addStudy(root: Command, { perform, inputs, io }: Stage): void {

@@ -42,9 +42,16 @@ export function clockFrom(options: TimeOptions, unit: Unit, until: () => number)
   return { si: Float64Array.from(shown, (t) => fromUnit(t, unitOf)), shown, unit: unitOf };
 }
 
-function single(text: string): Clock {
-  const clock = listed(text, "--until", '"6 h"');
-  if (clock.shown.length !== 1) throw new UsageError('--until takes one time, such as "6 h"');
+/** One time of an option, above 0: its unit is its own. */
+export function oneTime(text: string, option: string, example: string): { readonly si: number; readonly unit: Unit } {
+  const clock = single(text, option, example);
+  if (!(clock.si[0] > 0)) throw new UsageError(`${option} must be longer than 0`);
+  return { si: clock.si[0], unit: clock.unit };
+}
+
+function single(text: string, option = "--until", example = '"6 h"'): Clock {
+  const clock = listed(text, option, example);
+  if (clock.shown.length !== 1) throw new UsageError(`${option} takes one time, such as ${example}`);
   return clock;
 }
 

@@ -66,7 +66,8 @@ function spreadOf(problem: Problem, x: Float64Array, pull: number): number {
   return Math.sqrt(at.ofData / (freedom > pull ? freedom - pull : freedom));
 }
 
-function priorsOf(setup: Setup, spread: number): Prior[] {
+/** Declared `±` of parameters and facts as residuals; `spread`: that of one weighted residual of the data. */
+export function priorsOf(setup: Setup, spread: number): Prior[] {
   const ofParameters = setup.coordinates.flatMap((c, index): Prior[] => {
     const sd = c.named.value.sd?.(setup.env) ?? 0;
     if (!(sd > 0)) return [];

@@ -34,7 +34,7 @@ export function resolveReading(
   const raw = table?.valueUnit;
   const calibration = resolveCalibration(child(node, "calibration"), raw, files, report);
   if (calibration === "faulty" || !drawn) return undefined;
-  const unit = calibration?.perUnit ?? raw ?? planned;
+  const unit = calibration?.perUnit ?? raw ?? draftUnit(node, planned);
   const noise = resolveNoise(child(node, "noise"), unit, raw, calibration, report);
   const limits = resolveLimits(child(node, "limits"), unit, calibration, report);
   const leaveOut = resolveLeaveOut(child(node, "leave-out"), table?.series, clock, report);
@@ -63,6 +63,21 @@ export function resolveReading(
     leaveOut,
     unit,
   };
+}
+
+/** A draft is in the unit of its noise or limits, where they are concentrations. */
+function draftUnit(node: MapNode, planned: Unit): Unit {
+  const silent: Report = () => {};
+  const said = [
+    child(child(node, "noise"), "floor"),
+    child(child(node, "limits"), "above"),
+    child(child(node, "limits"), "below"),
+  ];
+  for (const written of said) {
+    const unit = resolveDetectorValue(written, false, silent)?.unit;
+    if (written && unit && sameDimension(unit.dimension, planned.dimension)) return unit;
+  }
+  return planned;
 }
 
 const draft: Staged = { stages: [], doubts: [] };

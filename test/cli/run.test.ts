@@ -34,7 +34,7 @@ describe("wrong usage ends with 2, a hint and no stack", () => {
     ["resuming of later", ["fit", "tank.yaml", "--trial", "pulse.yaml", "--resume", "x.json"]],
     ["an unknown parameter", ["fit", "tank.yaml", "--trial", "pulse.yaml", "--free", "volume"]],
     ["a picture of an unknown sort", ["draw", "tank.yaml", "-o", "tank.pdf"]],
-    ...["sweep", "plan", "language-server"].map((command): [string, string[]] => [
+    ...["sweep", "language-server"].map((command): [string, string[]] => [
       `${command}, of later`,
       [command, "x.yaml", "--some", "thing"],
     ]),

@@ -176,6 +176,20 @@ export const runEntries = {
     fix: "flows, volumes and mean times are there at any size (`check`, `verify`); else join cells into fewer",
     example: { what: "compute tracer curves of", nodes: 64_004, most: 20_000, circle: false },
   }),
+  "plan-many": entry({
+    severity: "error",
+    says: (d: { samples: number; most: number }) =>
+      `the plan would have ${d.samples} samples a reading; ${d.most} are the most`,
+    fix: "take longer steps: what a logger averages between them does not change what the test tells",
+    example: { samples: 18_000, most: 2000 },
+  }),
+  "plan-endless": entry({
+    severity: "error",
+    says: (_: Record<never, never>) =>
+      "nothing tells when this test would be over: no tracer comes through to a reading and is gone",
+    fix: 'say how long it may take: `--until "2 h"`',
+    example: {},
+  }),
 };
 
 function joined(names: readonly string[]): string {
