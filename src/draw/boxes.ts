@@ -13,3 +13,7 @@ export function union(boxes: readonly Box[]): Box {
 /** The part of a box right of `left`. */
 export const clipTo = (box: Box, left: number | undefined): Box =>
   left === undefined || box.x >= left ? box : { ...box, x: left, width: Math.max(0, box.x + box.width - left) };
+
+/** Do two boxes have more than an edge in common? */
+export const overlaps = (a: Box, b: Box): boolean =>
+  a.x < b.x + b.width && b.x < a.x + a.width && a.y < b.y + b.height && b.y < a.y + a.height;

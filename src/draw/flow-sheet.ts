@@ -5,7 +5,7 @@ import { dimensions } from "../units/dimension.js";
 import { pastPorts } from "./part-ports.js";
 import { skipsBodies } from "./routes.js";
 import { amount, typeset } from "./scale.js";
-import type { BodyRole, FlowSheet, SheetBody, SheetStream, SheetUnit } from "./sheet.js";
+import type { BodyRole, FlowSheet, SheetBody, SheetGroup, SheetStream, SheetUnit } from "./sheet.js";
 
 /** What a drawing of a plant may show besides its bodies and streams; names as in the file (`chain.2` marks `chain`). */
 export interface SheetOptions {
@@ -35,8 +35,15 @@ export function flowSheet(plant: Plant, wanted: SheetOptions = {}): FlowSheet {
     says: vesselLine(plant, units),
     bodies,
     streams: streamsOf(streams, bodies, units.flow, options),
+    ...(network.groups.length > 0 ? { groups: groupsOf(plant, passed) } : {}),
     units,
   };
+}
+
+/** Parts as far as their bodies are drawn; what lies still is drawn apart. */
+function groupsOf({ network: { groups, compartments } }: Plant, passed: ReadonlySet<string>): readonly SheetGroup[] {
+  const drawn = new Set(compartments.filter((c) => c.kind.flows && !passed.has(c.name)).map((c) => c.name));
+  return groups.map(({ name, members }) => ({ name, members: members.filter((m) => drawn.has(m)) }));
 }
 
 /** What is marked at a part is marked at its port. */

@@ -1,3 +1,4 @@
+import { samples } from "../svg/spine.js";
 import type { Box } from "../svg/svg.js";
 import type { Arcs, Placed } from "./blocks.js";
 import { clipTo, union } from "./boxes.js";
@@ -5,6 +6,7 @@ import type { Caption } from "./caption.js";
 import { Clutter } from "./clutter.js";
 import { deadRow, type Manifold, type Mark, manifoldsOf, marksOf, type Row } from "./extras.js";
 import { type LabelWish, occupyRibbon, type PlacedLabel, placeLabels } from "./labels.js";
+import { type PartFrame, type Passing, partFrames } from "./part-frames.js";
 import { type Placing, placeBlocks, type Ribbon, ribbonBox } from "./placing.js";
 import { type Scale, scaleOf } from "./scale.js";
 import type { FlowSheet } from "./sheet.js";
@@ -19,6 +21,8 @@ export interface Layout {
   readonly labels: readonly PlacedLabel[];
   readonly manifolds: readonly Manifold[];
   readonly marks: readonly Mark[];
+  /** Frames of parts, inner ones first. */
+  readonly parts: readonly PartFrame[];
   /** Around what belongs to the vessel: all but feeds and outlets. */
   readonly frame: Box;
   readonly bounds: Box;
@@ -34,7 +38,8 @@ export function layOut(sheet: FlowSheet): Layout {
   const scale = scaleOf(sheet);
   const placing = placeBlocks(sheet, scale);
   const { blocks, ribbons } = placing;
-  const vessel = vesselOf(placing);
+  const parts = partFrames(sheet.groups ?? [], blocks, ribbons.map(passing));
+  const vessel = around(vesselOf(placing), parts);
   const dead = deadBelow(sheet, scale, placing, vessel);
   const bodies = [...blocks.flatMap((b) => b.bodies), ...dead.bodies];
   const captions = [...blocks.flatMap((b) => b.captions), ...dead.captions];
@@ -45,13 +50,19 @@ export function layOut(sheet: FlowSheet): Layout {
   const clutter = new Clutter();
   for (const box of boxesOf({ bodies, captions })) clutter.add(box);
   for (const a of arcs) clutter.add({ x: a.x - 10, y: a.top, width: 20, height: a.bottom - a.top });
+  for (const { title } of parts) clutter.add(title.box);
   for (const m of marks) clutter.add({ x: m.x - 7, y: m.y - 9, width: 14, height: 18 });
   for (const r of ribbons) occupyRibbon(clutter, r.spine, r.trip.width);
   const labels = placeLabels(wishesOf(ribbons), clutter, room);
   const all = union([room, ...labels.map((l) => l.caption.box), ...boxesOf(dead)]);
   const right = Math.max(vessel.x + vessel.width, all.x + all.width + 8);
   const frame = { x: vessel.x, y: all.y - 6, width: right - vessel.x, height: all.height + 12 };
-  const bounds = union([frame, ...boxesOf({ bodies, captions }), ...ribbons.map(ribbonBox)]);
+  const bounds = union([
+    frame,
+    ...parts.map((p) => p.box),
+    ...boxesOf({ bodies, captions }),
+    ...ribbons.map(ribbonBox),
+  ]);
   return {
     scale,
     bodies,
@@ -61,10 +72,23 @@ export function layOut(sheet: FlowSheet): Layout {
     labels,
     manifolds: blocks.flatMap(manifoldsOf),
     marks,
+    parts,
     frame,
     bounds,
   };
 }
+
+const passing = ({ trip: { stream, width }, spine }: Ribbon): Passing => ({
+  from: stream.from,
+  to: stream.to,
+  covers: samples(spine, 4).map((p) => ({ x: p.x - width / 2, y: p.y - width / 2, width, height: width })),
+});
+
+/** The vessel's frame runs outside those of its parts. */
+const around = (vessel: Box, parts: readonly PartFrame[]): Box =>
+  parts.length === 0
+    ? vessel
+    : union([vessel, ...parts.map(({ box }) => ({ ...box, x: box.x - 6, width: box.width + 12 }))]);
 
 /** The box of the vessel: between feeds and outlets where there are such, else around all. */
 function vesselOf({ blocks, ribbons, columns }: Placing): Box {

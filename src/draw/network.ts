@@ -21,13 +21,20 @@ export function drawNetwork(sheet: FlowSheet, options: PictureOptions = {}): Svg
   const view = { x: all.x - margin, y: all.y - margin, width: all.width + 2 * margin, height: all.height + 2 * margin };
   const parts = [
     rectangle(layout.frame, "frame", 14),
+    ...layout.parts.map((p) => rectangle(p.box, "frame part", 8)),
     group("streams", inDrawingOrder(layout.ribbons).map(drawRibbon)),
     group("bodies", layout.bodies.map(drawBody)),
     ...layout.manifolds.map((m) => line(m.x, m.top, m.x, m.bottom, "manifold")),
     ...layout.arcs.map(drawArcs),
     ...layout.marks.map(drawMark),
     ...layout.labels.flatMap(({ leader: l }) => (l ? [line(l.from.x, l.from.y, l.to.x, l.to.y, "leader")] : [])),
-    ...[...heading, ...layout.captions, ...layout.labels.map((l) => l.caption), ...legend.captions].map(drawCaption),
+    ...[
+      ...heading,
+      ...layout.captions,
+      ...layout.parts.map((p) => p.title),
+      ...layout.labels.map((l) => l.caption),
+      ...legend.captions,
+    ].map(drawCaption),
     legend.marks,
   ];
   return picture(sheet.title, inWords(sheet), view, options.theme ?? "auto", parts);

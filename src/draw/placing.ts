@@ -7,6 +7,7 @@ import { type Columns, columnsOf } from "./columns.js";
 import { heightsOf } from "./heights.js";
 import { spinesOf } from "./lanes.js";
 import { type Ordered, orderBlocks } from "./order.js";
+import { framesAround } from "./part-frames.js";
 import { type Ports, portsOf, type Routed, routeTrips } from "./ports.js";
 import { amount, type Scale } from "./scale.js";
 import type { FlowSheet } from "./sheet.js";
@@ -44,8 +45,13 @@ export function placeBlocks(sheet: FlowSheet, scale: Scale): Placing {
   const ports = new Map(names.map((n) => [n, portsOf(n, routed, ordered, role.get(n) === "junction")]));
   const blocks = new Map(names.map((n) => [n, blockOf(n, sheet, scale, ports.get(n)!, routed, hanging)]));
   const lanes = laneWidths(routed, ordered);
+  const framed = (id: string): { readonly above: number; readonly below: number } | undefined => {
+    const own = blocks.get(id)?.reach;
+    const { above, below } = framesAround(sheet.groups ?? [], id);
+    return own && { above: own.above + above, below: own.below + below };
+  };
   const reach = (id: string): { readonly above: number; readonly below: number } =>
-    blocks.get(id)?.reach ?? { above: lanes.get(id)! / 2 + 14, below: lanes.get(id)! / 2 + 2 };
+    framed(id) ?? { above: lanes.get(id)! / 2 + 14, below: lanes.get(id)! / 2 + 2 };
   const y = heightsOf(ordered, routed, ports, reach);
   const columns = columnsOf(ordered, blocks, routed, labelWidth, largestDrop(ordered, routed, ports, y), {
     first: names.some((n) => role.get(n) === "feed") ? frameMargin : 0,

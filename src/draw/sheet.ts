@@ -7,6 +7,8 @@ export interface FlowSheet {
   readonly says?: string;
   readonly bodies: readonly SheetBody[];
   readonly streams: readonly SheetStream[];
+  /** Bodies that belong together, outer groups first: parts. */
+  readonly groups?: readonly SheetGroup[];
   readonly units: { readonly volume: SheetUnit; readonly flow: SheetUnit };
   /** What the tones of the bodies tell, where they have any: "mean age", and the values at the two ends of the scale in words. */
   readonly tones?: { readonly quantity: string; readonly low: string; readonly high: string };
@@ -16,6 +18,12 @@ export interface FlowSheet {
 export interface SheetUnit {
   readonly name: string;
   readonly factor: number;
+}
+
+export interface SheetGroup {
+  readonly name: string;
+  /** Names of bodies. */
+  readonly members: readonly string[];
 }
 
 export type BodyRole = "feed" | "outlet" | "body" | "junction" | "dead";

@@ -145,6 +145,7 @@ function drawingRules(colour: (name: keyof Palette) => string): readonly Rule[] 
     [[".hatch"], `stroke:${colour("hatch")};stroke-width:1.2`],
     [[".dot"], `fill:${colour("wall")}`],
     [[".frame"], `fill:none;stroke:${colour("faint")};stroke-width:1.25`],
+    [[".frame.part"], `stroke:${colour("hatch")};stroke-width:.8;stroke-dasharray:2 3`],
     [[".leader"], `stroke:${colour("quiet")};stroke-width:.6`],
     [[".ribbon"], `fill:none;stroke:${colour("stream")}`],
     [[".ribbon.back"], `stroke:${colour("back")}`],
