@@ -49,7 +49,10 @@ try {
   rmSync(dist, { recursive: true, force: true });
   await Promise.all([
     // The shebang comes from the entry file itself, so that only it carries one, not the chunks.
-    bundle("src/cli/main.ts", "backmix", { banner: { js: requireBanner } }),
+    bundle("src/cli/main.ts", "backmix", {
+      entryPoints: { backmix: "src/cli/main.ts", "refit-worker": "src/cli/refit-worker.ts" },
+      banner: { js: requireBanner },
+    }),
     bundle("src/index.ts", "index", { packages: "external" }),
     types(),
   ]);

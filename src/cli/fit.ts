@@ -1,5 +1,7 @@
 import { checkTrial } from "../check/trial.js";
+import type { Bootstrap } from "../fit/bootstrap.js";
 import { fit } from "../fit/fit.js";
+import type { Resampling } from "../fit/resample.js";
 import type { Fit } from "../fit/result.js";
 import { parseNetwork } from "../parse/network.js";
 import { parseTrial } from "../parse/trial.js";
@@ -25,10 +27,18 @@ export interface FitOptions {
   readonly strict?: true;
   readonly write?: true;
   readonly profile?: true;
+  readonly bootstrap?: number;
+  readonly resample?: Resampling;
+  readonly resume?: string;
+  readonly jobs?: number;
 }
 
 /** `fit NETWORK --trial FILE…`: the parameters of a network from all trials at once. */
-export function fitCommand(file: string, options: FitOptions, { inputs, io }: Context): Outcome {
+export async function fitCommand(file: string, options: FitOptions, { inputs, io }: Context): Promise<Outcome> {
+  for (const name of ["resume", "resample", "jobs"] as const) {
+    if (options[name] !== undefined && options.bootstrap === undefined)
+      throw new UsageError(`--${name} goes with --bootstrap`);
+  }
   if (options.write && file === "-") throw new UsageError("--write needs a file to write to, not standard input");
   const network = inputs.document(file, parseNetwork);
   const trials = options.trial.map((path) => inputs.document(path, parseTrial));
@@ -48,20 +58,37 @@ export function fitCommand(file: string, options: FitOptions, { inputs, io }: Co
   });
   progress.done();
   if (!outcome.fit) throw new InputError(outcome.problems);
-  const fitStatus = statusOf(outcome.fit, options.strict === true);
+  const { bootstrap: asked } = options;
+  const sure = outcome.fit.converged && !outcome.fit.stopped && outcome.fit.parameters.length > 0;
+  const refits =
+    asked !== undefined && sure
+      ? await (await import("./bootstrap.js")).bootstrap(
+          network,
+          trials,
+          outcome.fit,
+          { ...options, bootstrap: asked },
+          { inputs, io },
+        )
+      : undefined;
+  const cut = refits !== undefined && refits.done < refits.asked;
+  const fitStatus = cut ? 130 : statusOf(outcome.fit, options.strict === true);
   const writing = options.write ? writeFit(file, network, outcome.fit, fitStatus, io) : undefined;
   const status = fitStatus === 0 && writing?.failed ? 1 : fitStatus;
   return {
     status,
-    text: blocks(fitText(network.title, outcome.fit), pictureOf(outcome.fit, network.units.time, io), writing?.text),
+    text: blocks(
+      fitText(network.title, outcome.fit, refits),
+      pictureOf(outcome.fit, network.units.time, io),
+      writing?.text,
+    ),
     json: {
       ok: status === 0,
       network: network.title,
-      ...fitJson(outcome.fit, network.units.time),
+      ...fitJson(outcome.fit, network.units.time, refits),
       ...(writing ? { written: writing.written } : {}),
     },
     problems: [...outcome.problems, ...(writing?.problems ?? [])],
-    notes: [...notesOf(outcome.fit, fitStatus), ...(writing?.notes ?? [])],
+    notes: [...(cut ? [cutShort(refits)] : notesOf(outcome.fit, fitStatus)), ...(writing?.notes ?? [])],
   };
 }
 
@@ -76,6 +103,9 @@ const pictureOf = ({ readings }: Fit, time: Unit, io: Context["io"]): string =>
       yUnit: r.unit.name,
     })),
   );
+
+const cutShort = ({ done, asked }: Bootstrap): string =>
+  `backmix: interrupted after ${done} of ${asked} refits; with --resume FILE a bootstrap can be gone on with`;
 
 /** A parameter that the data leave open: without a standard error, or part of a combination that they cannot tell. */
 const cannotBeTold = (fit: Fit): boolean =>

@@ -75,6 +75,11 @@ export class Inputs {
     this.warnings.push(...problems);
   }
 
+  /** What every path that was asked for holds. */
+  get all(): ReadonlyMap<string, string | Uint8Array | undefined> {
+    return this.contents;
+  }
+
   /** Every path that was asked for, also where nothing is. */
   get paths(): readonly string[] {
     return [...this.contents.keys()];

@@ -144,12 +144,19 @@ function addFit(root: Command, { perform, inputs, io }: Stage): void {
       "profile every parameter: intervals that hold where the curve bends or a front crosses a sample",
     )
     .option("--write", "put the values back into the network's file, comments kept");
-  later(fit, "--bootstrap <n>", "--resume <file>").action((network: string, options, self: Command) =>
-    perform("fit", async () => {
-      refuseLater(self);
-      return (await import("./fit.js")).fitCommand(network, options, { inputs, io });
-    }),
-  );
+  fit
+    .option("--bootstrap <n>", "refit so many data sets made anew from the fit, on all cores", whole(1))
+    .addOption(
+      new Option(
+        "--resample <how>",
+        "how they are made (default: residual, block where residuals hang together)",
+      ).choices(["residual", "block", "parametric"]),
+    )
+    .option("--resume <file>", "where the bootstrap saves what is done, and goes on from")
+    .option("--jobs <n>", "threads of the bootstrap (default: all cores)", whole(1))
+    .action((network: string, options) =>
+      perform("fit", async () => (await import("./fit.js")).fitCommand(network, options, { inputs, io })),
+    );
 }
 
 function addPlan(root: Command, { perform, inputs, io }: Stage): void {

@@ -18,6 +18,8 @@ export interface Evaluation {
 /** A fact that pulls one coordinate towards what is declared, as one more residual. */
 export interface Prior {
   readonly index: number;
+  /** Spread of the data's weighted residuals that it is counted in. */
+  readonly spread: number;
   /** (declared - x) / sd times the spread of the data's weighted residuals, and its derivative with respect to x. */
   residual(x: number): number;
   slope(x: number): number;

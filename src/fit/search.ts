@@ -103,6 +103,8 @@ export interface Effort {
   readonly tolerance: number;
   readonly evaluationsPerUnknown: number;
   readonly polish: boolean;
+  /** Relative step under which a descent is at its end, for data that put jumps beside the optimum. */
+  readonly smallest?: number;
 }
 const roughly: Effort = { tolerance: 1e-3, evaluationsPerUnknown: 10, polish: false };
 export const closely: Effort = { tolerance: 1e-7, evaluationsPerUnknown: 30, polish: false };
@@ -136,6 +138,7 @@ export function descend(problem: Problem, from: Float64Array, effort: Effort, wa
     upper: [...coordinates.map((c, j) => (j === still ? from[j] : c.to)), ...new Array<number>(facts).fill(Infinity)],
     tolerance: effort.tolerance,
     polish: effort.polish,
+    ...(effort.smallest === undefined ? {} : { smallest: effort.smallest }),
     maxEvaluations: effort.evaluationsPerUnknown * (from.length + 1),
     cancelled: () => watch.cancelled(),
   });

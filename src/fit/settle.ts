@@ -75,6 +75,7 @@ export function priorsOf(setup: Setup, spread: number): Prior[] {
     return [
       {
         index,
+        spread,
         residual: (u) => (spread * (declared - c.toSi(u))) / sd,
         slope: (u) => (-spread * c.slope(u)) / sd,
       },
@@ -82,7 +83,7 @@ export function priorsOf(setup: Setup, spread: number): Prior[] {
   });
   const n = setup.coordinates.length;
   const ofFacts = setup.held.map(
-    (_, j): Prior => ({ index: n + j, residual: (e) => -spread * e, slope: () => -spread }),
+    (_, j): Prior => ({ index: n + j, spread, residual: (e) => -spread * e, slope: () => -spread }),
   );
   return [...ofParameters, ...ofFacts];
 }

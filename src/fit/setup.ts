@@ -19,6 +19,8 @@ export interface Setup {
   readonly blocks: readonly Block[];
   readonly observations: number;
   readonly model: ForwardModel;
+  /** Moves facts besides, at every point. */
+  readonly alter?: (facts: Facts) => void;
   /** Evaluations of the forward model so far. */
   readonly cost: { evaluations: number };
 }
@@ -72,7 +74,7 @@ export function slopesOf(
   directions: readonly ((trial: number) => Direction | undefined)[],
 ): (readonly Float64Array[] | undefined)[] {
   const slopes: (Float64Array[] | undefined)[] = directions.map(() => []);
-  const shifted = new Set(setup.held.flatMap((h) => h.name ?? []));
+  const shifted = new Set([...setup.held, ...setup.constants].flatMap((h) => h.name ?? []));
   for (const [k, trial] of facts.trials.entries()) {
     const blocks = setup.blocks.filter((b) => b.trial === k);
     if (blocks.length === 0) continue;
@@ -102,6 +104,7 @@ export function factsAt(setup: Setup, x: ArrayLike<number>): Facts {
   const facts: Facts = { trials: [...setup.trials], values: valuesAt(setup, x) };
   const n = setup.coordinates.length;
   for (let j = 0; n + j < x.length; j++) if (x[n + j] !== 0) setup.held[j].move(facts, x[n + j] * setup.held[j].sd);
+  setup.alter?.(facts);
   return facts;
 }
 

@@ -96,8 +96,11 @@ export class DenseSteps {
 
   private apply(e: Float64Array, v: Float64Array): void {
     const { n, length, scratch } = this;
-    if (n === 1) return this.applyToOne(e, v);
-    if (n === 2) return this.applyToTwo(e, v);
+    if (n <= 2) {
+      if (n === 1) this.applyToOne(e, v);
+      else if (n === 2) this.applyToTwo(e, v);
+      return;
+    }
     for (let i = 0; i < n; i++) {
       let sum = 0;
       for (let j = 0; j < n; j++) sum += e[i * n + j] * v[j];

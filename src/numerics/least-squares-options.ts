@@ -14,6 +14,8 @@ export interface LeastSquaresOptions {
   readonly allowed?: (p: Float64Array) => boolean;
   /** Relative fall of the sum of squares, and relative step, under which the search ends. Default 1e-10. */
   readonly tolerance?: number;
+  /** Trust radius, relative to the parameters, under which the search gives up: where the sum of squares jumps. Default 1e-15. */
+  readonly smallest?: number;
   /** Calls of `residuals`, those for differences included. Default 2000 (n + 1). */
   readonly maxEvaluations?: number;
   /**

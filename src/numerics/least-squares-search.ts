@@ -108,8 +108,10 @@ export class Search {
         if (accepted) at = next;
         const still = promised <= tolerance * at.sum && Math.abs(gain) <= tolerance * at.sum && ratio <= 2;
         if (still || (damping === 0 && length <= tolerance * size)) return [at, "converged"];
-        if (radius <= 1e-15 * size || radius < 1e-280) {
-          return [at, slope(model, movable(model, box), at.sum) < 1e-5 ? "converged" : "no-progress"];
+        if (radius <= (this.o.smallest ?? 1e-15) * size || radius < 1e-280) {
+          // Beside a jump of the sum of squares there is nothing better near, whatever the slope on this side of it.
+          const flat = this.o.smallest !== undefined || slope(model, movable(model, box), at.sum) < 1e-5;
+          return [at, flat ? "converged" : "no-progress"];
         }
         if (accepted) break;
       }

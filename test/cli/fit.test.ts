@@ -50,6 +50,32 @@ describe("fit", () => {
     expect((await backmix([...command, "--profile"], { files })).out).toMatch(/^ {2}profile +95 % from +to +unit/m);
   });
 
+  test("--bootstrap refits data made anew, and goes on where it was left", async () => {
+    const again = [...command, "--bootstrap", "60", "--resume", "done.json"];
+    const first = await backmix([...command, "--bootstrap", "60"], { files });
+    expect(first.out).toMatch(/^ {2}bootstrap +median +standard error +95 % from +to +unit/m);
+    expect(first.out).toContain("60 refits, residuals drawn");
+    const part = await backmix([...command, "--bootstrap", "25", "--resume", "done.json"], { files });
+    const done = part.written.get("done.json") as string;
+    expect(JSON.parse(done).rows).toHaveLength(25);
+    const whole = await backmix(again, { files: { ...files, "done.json": done } });
+    expect(whole.out).toBe(first.out);
+    const { document } = await json(again, { files: { ...files, "done.json": done } });
+    expect(Object.keys(at(document, "bootstrap.parameters.size") as object)).toEqual([
+      "value",
+      "unit",
+      "standardError",
+      "interval95",
+    ]);
+    const otherwise = await backmix([...again, "--seed", "2"], { files: { ...files, "done.json": done } });
+    expect(otherwise.status).toBe(2);
+    expect(otherwise.err).toContain("belongs to another fit");
+    expect((await backmix([...again, "--seed", "2"], { files: { ...files, "done.json": "{}" } })).err).toContain(
+      "was not written by a bootstrap",
+    );
+    expect((await backmix([...command, "--resume", "x"], { files })).err).toContain("--resume goes with --bootstrap");
+  });
+
   test("residuals add up to the sum of squares", async () => {
     const { document } = await json(command, { files });
     const residuals = at(document, "readings.0.residual.values") as unknown as number[];

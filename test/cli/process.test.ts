@@ -12,7 +12,7 @@ const script = join(folder, "dist", "backmix.js");
 
 beforeAll(async () => {
   await build({
-    entryPoints: { backmix: "src/cli/main.ts" },
+    entryPoints: { backmix: "src/cli/main.ts", "refit-worker": "src/cli/refit-worker.ts" },
     outdir: join(folder, "dist"),
     bundle: true,
     splitting: true,
@@ -53,6 +53,14 @@ function ended(child: ChildProcess): Promise<{ status: number | null; out: strin
 }
 
 describe("the program as a process", () => {
+  test("refits give the same bytes on one thread and on several", async () => {
+    const command = ["fit", "tank.yaml", "--trial", "pulse.yaml", "--bootstrap", "90", "--json", "--jobs"];
+    const [one, several] = await Promise.all(["1", "3"].map((jobs) => ended(start([...command, jobs]))));
+    expect(one.status).toBe(0);
+    expect(JSON.parse(one.out).bootstrap).toMatchObject({ done: 90, failed: 0 });
+    expect(several).toEqual(one);
+  });
+
   test("gives its version", async () => {
     expect(await ended(start(["--version"]))).toEqual({ status: 0, out: "9.8.7\n", err: "" });
   });

@@ -28,8 +28,6 @@ describe("wrong usage ends with 2, a hint and no stack", () => {
     ["a duty with times", ["simulate", "tank.yaml", "--duty", "duty.yaml", "--until", "6 h"]],
     ["curves to no CSV", ["simulate", "tank.yaml", "--pulse", "feed", "-o", "curves.xlsx"]],
     ["a fit without trials", ["fit", "tank.yaml"]],
-    ["bootstrap of later", ["fit", "tank.yaml", "--trial", "pulse.yaml", "--bootstrap", "9"]],
-    ["a bootstrap of later", ["fit", "tank.yaml", "--trial", "pulse.yaml", "--bootstrap", "99"]],
     ["writing to standard input", ["fit", "-", "--trial", "pulse.yaml", "--write"]],
     ["resuming of later", ["fit", "tank.yaml", "--trial", "pulse.yaml", "--resume", "x.json"]],
     ["an unknown parameter", ["fit", "tank.yaml", "--trial", "pulse.yaml", "--free", "volume"]],

@@ -1,9 +1,10 @@
+import type { Bootstrap } from "../../fit/bootstrap.js";
 import type { Estimate, Fit, FittedParameter, FittedProfile, Nuisance } from "../../fit/result.js";
 import { differenceInUnit, type Unit } from "../../units/unit.js";
 import { finite, quantity, series, unitName } from "./quantity.js";
 
 /** What a fit found, every number in the unit that people see. */
-export function fitJson(fit: Fit, time: Unit): Record<string, unknown> {
+export function fitJson(fit: Fit, time: Unit, refits?: Bootstrap): Record<string, unknown> {
   return {
     parameters: Object.fromEntries(fit.parameters.map((p) => [p.name, parameterJson(p)])),
     nuisance: Object.fromEntries(Object.entries(fit.nuisance).map(([key, terms]) => [key, nuisanceJson(terms)])),
@@ -32,6 +33,7 @@ export function fitJson(fit: Fit, time: Unit): Record<string, unknown> {
       residual: { unit: unitName(r.unit), values: Array.from(r.residual, (v) => finite(differenceInUnit(v, r.unit))) },
     })),
     held: fit.held,
+    ...(refits ? { bootstrap: bootstrapJson(refits) } : {}),
     ...(fit.profiles ? { profiles: Object.fromEntries(fit.profiles.map((p) => [p.name, profileJson(p)])) } : {}),
     findings: fit.findings,
   };
@@ -47,6 +49,22 @@ export function parameterJson(p: FittedParameter): object {
     interval95: ends ?? null,
     ...(p.standardError === undefined || ends === undefined ? { why: "not-estimable" } : {}),
     atBound: p.atBound ?? null,
+  };
+}
+
+function bootstrapJson({ parameters, ...how }: Bootstrap): object {
+  return {
+    ...how,
+    parameters: Object.fromEntries(
+      parameters.map(({ name, unit, standardError, interval95, median }) => [
+        name,
+        {
+          ...quantity(median, unit),
+          standardError: finite(differenceInUnit(standardError, unit)),
+          interval95: interval95.every(Number.isFinite) ? interval95.map((v) => quantity(v, unit).value) : null,
+        },
+      ]),
+    ),
   };
 }
 

@@ -1,11 +1,13 @@
+import type { Bootstrap } from "../../fit/bootstrap.js";
 import type { ProfileEnd } from "../../fit/profile.js";
+import type { Resampling } from "../../fit/resample.js";
 import type { Estimate, Fit, FitFinding } from "../../fit/result.js";
 import { formatNumber } from "../../units/format.js";
 import { errorText, supported } from "./digits.js";
 import { blocks, table } from "./table.js";
 
 /** What a fit found, for people. */
-export function fitText(title: string, fit: Fit): string {
+export function fitText(title: string, fit: Fit, refits?: Bootstrap): string {
   const { observations, freeParameters, evaluations } = fit;
   const marked = fit.converged ? "" : fit.stopped ? " (interrupted: best so far)" : " (not converged: best found)";
   const unit = fit.residualUnit ? ` (${fit.residualUnit.name || "bare"})^2` : "";
@@ -13,6 +15,7 @@ export function fitText(title: string, fit: Fit): string {
     `${title}${marked}`,
     parametersTable(fit),
     profileTable(fit),
+    refits ? bootstrapTable(refits) : "",
     nuisanceTable(fit),
     correlationTable(fit),
     [
@@ -71,6 +74,43 @@ function profileTable({ profiles }: Fit): string {
       return [name, end(low), end(high), unit.name, words.filter(Boolean).join(", ")];
     }),
   );
+}
+
+const drawnHow: Readonly<Record<Resampling, string>> = {
+  residual: "residuals drawn one by one",
+  block: "residuals drawn in blocks",
+  parametric: "normal errors of the fitted spread",
+};
+
+function bootstrapTable({ parameters, resampling, block, done, asked, failed }: Bootstrap): string {
+  const rows = parameters.map(({ name, unit, standardError, interval95: [low, high], median }) => {
+    const end = (v: number): string => (Number.isFinite(v) ? supported(v, unit, standardError) : "too few");
+    return [
+      name,
+      supported(median, unit, standardError),
+      errorText(standardError, unit),
+      end(low),
+      end(high),
+      unit.name,
+    ];
+  });
+  const many = done < asked ? `${done} of ${asked}` : String(done);
+  const long = block > 1 ? ` of ${block} points` : "";
+  const lost = failed > 0 ? `; ${failed} did not converge and are left out` : "";
+  return [
+    table(
+      [
+        { title: "bootstrap" },
+        right("median"),
+        right("standard error"),
+        right("95 % from"),
+        right("to"),
+        { title: "unit" },
+      ],
+      rows,
+    ),
+    `  ${many} refits, ${drawnHow[resampling]}${long}${lost}`,
+  ].join("\n");
 }
 
 function nuisanceTable({ nuisance }: Fit): string {

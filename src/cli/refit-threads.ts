@@ -1,0 +1,92 @@
+import { existsSync } from "node:fs";
+import { availableParallelism } from "node:os";
+import { fileURLToPath } from "node:url";
+import { Worker } from "node:worker_threads";
+import { type RefitJob, type RefitRows, type RefitSpan, refitsOfJob, rowsOf } from "./refit-job.js";
+
+/** Refits that are worth a thread of their own, and that are asked of one at a time. */
+const worthAThread = 30;
+const spanLength = 10;
+
+/** What listens to a run of refits. */
+export interface RefitListener {
+  /** Refits that have come in; called often. */
+  rows(rows: RefitRows): void;
+  cancelled(): boolean;
+}
+
+/**
+ * Does refits by number on several threads, in this one where there are few or no file for a thread. What comes in does not
+ * depend on how many there are.
+ * @param threads  at most so many; undefined: as many as there are cores
+ * @returns when all are done or it was cancelled
+ */
+export async function runRefits(
+  job: RefitJob,
+  wanted: readonly number[],
+  threads: number | undefined,
+  listener: RefitListener,
+): Promise<void> {
+  const spans = spansOf(wanted);
+  const most = Math.min(threads ?? availableParallelism(), Math.ceil(wanted.length / worthAThread));
+  const file = workerFile();
+  if (most <= 1 || !file) return inThisThread(job, spans, listener);
+  await Promise.all(Array.from({ length: most }, () => oneThread(file, job, spans, listener)));
+}
+
+/** Takes spans from the front of the list until there are none. */
+function oneThread(file: string, job: RefitJob, spans: RefitSpan[], listener: RefitListener): Promise<void> {
+  return new Promise((resolve, reject) => {
+    const worker = new Worker(file, { workerData: job });
+    const watch = setInterval(() => {
+      if (listener.cancelled()) end();
+    }, 50);
+    const end = (): void => {
+      clearInterval(watch);
+      void worker.terminate();
+      resolve();
+    };
+    const next = (): void => {
+      const span = listener.cancelled() ? undefined : spans.shift();
+      if (span) worker.postMessage(span);
+      else end();
+    };
+    worker.on("message", (rows: RefitRows) => {
+      listener.rows(rows);
+      next();
+    });
+    worker.on("error", (e) => {
+      clearInterval(watch);
+      reject(e);
+    });
+    next();
+  });
+}
+
+async function inThisThread(job: RefitJob, spans: RefitSpan[], listener: RefitListener): Promise<void> {
+  const refits = refitsOfJob(job);
+  for (const span of refits ? spans : []) {
+    for (let r = span.from; r < span.to; r++) {
+      if (listener.cancelled()) return;
+      listener.rows(rowsOf(refits as NonNullable<typeof refits>, { from: r, to: r + 1 }));
+      await new Promise(setImmediate); // an interrupt is heard between refits
+    }
+  }
+}
+
+function spansOf(wanted: readonly number[]): RefitSpan[] {
+  const spans: { from: number; to: number }[] = [];
+  for (const r of wanted) {
+    const last = spans.at(-1);
+    if (last && last.to === r && r - last.from < spanLength) last.to++;
+    else spans.push({ from: r, to: r + 1 });
+  }
+  return spans;
+}
+
+/** The bundled file of the thread, beside this one or above its folder; none where the sources run by themselves. */
+function workerFile(): string | undefined {
+  return ["./refit-worker.js", "../refit-worker.js"]
+    .map((path) => fileURLToPath(new URL(path, import.meta.url)))
+    .find((path) => existsSync(path));
+}

@@ -1,0 +1,173 @@
+import type { Network } from "../model/network.js";
+import type { Trial } from "../model/trial.js";
+import { type Random, random } from "../numerics/random.js";
+import { collector } from "../problems/report.js";
+import { autocorrelationOf } from "./autocorrelation.js";
+import type { Facts } from "./held.js";
+import { networkModel } from "./network-model.js";
+import { prepare } from "./prepare.js";
+import { type Prior, problemWith } from "./problem.js";
+import { descend, type Effort, type Watch } from "./search.js";
+import { freedomOf, type Settled, settle } from "./settle.js";
+import type { Setup } from "./setup.js";
+import { delayWalks, withCoordinate } from "./starts.js";
+import { fittedCurve, weightsFor } from "./weights.js";
+
+/** How new data are made from a fit. */
+export type Resampling =
+  /** Residuals drawn with replacement. */
+  | "residual"
+  /** The same in blocks of neighbours, so that they hang together as they did. */
+  | "block"
+  /** Normal errors of the fitted spread; hanging together where the residuals do. */
+  | "parametric";
+
+/** A fit to go back to. */
+export interface Refits {
+  /** Names of the parameters, in the order of the values of a refit. */
+  readonly names: readonly string[];
+  readonly resampling: Resampling;
+  /** Points in a block; 1 where neighbours do not matter. */
+  readonly block: number;
+  /** Values of refit number r (SI), or undefined where it did not converge. It depends on the seed and r alone. */
+  refit(r: number): readonly number[] | undefined;
+}
+
+/** What a resampling needs to know. */
+export interface RefitOptions {
+  readonly free?: readonly string[];
+  /** Fitted values, SI by name. */
+  readonly values: Readonly<Record<string, number>>;
+  /** Default: residuals, in blocks where they hang together. */
+  readonly resampling?: Resampling;
+  readonly seed: number;
+}
+
+const refitting: Effort = { tolerance: 1e-8, evaluationsPerUnknown: 40, polish: false, smallest: 1e-6 };
+const unwatched: Watch = { cancelled: () => false, progress: () => {} };
+
+/**
+ * Refits of a network to data made anew from its fit, each from the optimum: what is declared with a `±` and what a calibration
+ * leaves open are drawn anew as well. Residuals are drawn within each reading, centred, and as large as the degrees of freedom
+ * make them.
+ * @returns undefined where the values make no fit
+ * @see B. Efron, R. Tibshirani, An Introduction to the Bootstrap, Chapman & Hall 1993, ch. 9; blocks: H.R. Künsch, Ann. Statist. 17 (1989) 1217-1241
+ */
+export function refitsOf(network: Network, trials: readonly Trial[], options: RefitOptions): Refits | undefined {
+  const { report } = collector();
+  const setup = prepare(networkModel(network), network, trials, options.free, report);
+  if (!setup) return undefined;
+  const weights = weightsFor(setup);
+  const problem = problemWith(setup, weights.weight);
+  const x = Float64Array.from(setup.coordinates, (c) => c.fromSi(options.values[c.name]));
+  const sum = problem.evaluate(x)?.ofAll ?? Number.POSITIVE_INFINITY;
+  const settled = settle(setup, weights, problem, { x, sum, converged: true, reached: 1 }, unwatched);
+  return settled && new Resampler(settled, options.resampling, options.seed);
+}
+
+class Resampler implements Refits {
+  readonly names: readonly string[];
+  readonly resampling: Resampling;
+  readonly block: number;
+  private readonly lag1: number;
+  private readonly spread: number;
+  private readonly inflate: number;
+  private readonly fitted: readonly Float64Array[];
+  private readonly gaps;
+
+  constructor(
+    private readonly settled: Settled,
+    resampling: Resampling | undefined,
+    private readonly seed: number,
+  ) {
+    const { problem, x, at } = settled;
+    const { setup } = problem;
+    const { lag1, significant } = autocorrelationOf(setup.blocks, at.residuals);
+    const freedom = Math.max(1, freedomOf(problem));
+    this.names = setup.coordinates.map((c) => c.name);
+    this.resampling = resampling ?? (significant ? "block" : "residual");
+    this.lag1 = significant ? lag1 : 0;
+    this.block = this.resampling === "block" ? blockLength(significant ? lag1 : 0.1, setup.observations) : 1;
+    this.spread = Math.sqrt(at.ofData / freedom);
+    this.inflate = Math.sqrt(setup.observations / freedom);
+    this.fitted = setup.blocks.map((b, k) => fittedCurve(b.time, b.origin, at, k));
+    this.gaps = delayWalks(setup, x).filter(({ gap }) => gap > 0);
+  }
+
+  refit(r: number): number[] | undefined {
+    const { problem, x } = this.settled;
+    const draw = random(this.seed * 2 ** 24 + r);
+    const measured = this.measured(draw);
+    const { setup } = problem;
+    const blocks = setup.blocks.map((b, k) => ({ ...b, measured: measured[k] }));
+    const deviations = setup.constants.map(() => draw.normal());
+    const alter = (facts: Facts): void => {
+      for (const [i, c] of setup.constants.entries()) c.move(facts, deviations[i] * c.sd);
+    };
+    const again: Setup = { ...setup, blocks, ...(deviations.length > 0 ? { alter } : {}) };
+    const priors = problem.priors.map((prior) => redrawn(prior, x[prior.index], draw.normal()));
+    const refitted = problemWith(again, problem.weight, priors);
+    let best = descend(refitted, x, refitting, unwatched);
+    for (const { index, gap } of this.gaps) {
+      for (const gaps of [-1, 1]) {
+        // A front in the next gap is worth a descent where it is nearly as good as it stands.
+        const beside = withCoordinate(best.x, index, best.x[index] + gaps * gap);
+        const { from, to } = setup.coordinates[index];
+        if (beside[index] < from || beside[index] > to) continue;
+        if (!((refitted.evaluate(beside)?.ofAll ?? Number.POSITIVE_INFINITY) < 1.2 * best.sum)) continue;
+        const other = descend(refitted, beside, refitting, unwatched);
+        if (other.sum < best.sum) best = other;
+      }
+    }
+    return best.converged ? setup.coordinates.map((c, j) => c.toSi(best.x[j])) : undefined;
+  }
+
+  /** New data of every reading. */
+  private measured(draw: Random): Float64Array[] {
+    const { problem, at } = this.settled;
+    return problem.setup.blocks.map((b, k) => {
+      const n = b.time.length;
+      const residuals = at.residuals.subarray(b.from, b.from + n);
+      const errors = this.resampling === "parametric" ? this.normal(n, draw) : this.drawn(residuals, draw);
+      const doubts = b.doubts.map(() => draw.normal());
+      return this.fitted[k].map((y, i) => {
+        const doubt = b.doubts.reduce((sum, d, j) => sum + doubts[j] * d[i], 0);
+        return y + errors[i] / problem.weight[b.from + i] + doubt;
+      });
+    });
+  }
+
+  private drawn(residuals: Float64Array, draw: Random): Float64Array {
+    const n = residuals.length;
+    const mean = residuals.reduce((sum, e) => sum + e, 0) / n;
+    const length = Math.min(this.block, n);
+    const errors = new Float64Array(n);
+    for (let i = 0; i < n; i += length) {
+      const from = draw.below(n - length + 1);
+      for (let k = 0; k < length && i + k < n; k++) errors[i + k] = this.inflate * (residuals[from + k] - mean);
+    }
+    return errors;
+  }
+
+  private normal(n: number, draw: Random): Float64Array {
+    const { lag1, spread } = this;
+    const fresh = Math.sqrt(1 - lag1 * lag1);
+    const errors = new Float64Array(n);
+    for (let i = 0; i < n; i++) {
+      errors[i] = i === 0 ? spread * draw.normal() : lag1 * errors[i - 1] + fresh * spread * draw.normal();
+    }
+    return errors;
+  }
+}
+
+/** The declared value of a prior, drawn anew about where the fit put it. */
+function redrawn(prior: Prior, at: number, z: number): Prior {
+  const here = prior.residual(at);
+  return { ...prior, residual: (u) => prior.residual(u) - here + prior.spread * z };
+}
+
+/** (2 r / (1 - r^2))^(2/3) n^(1/3), for residuals that hang together as a first-order autoregression (E. Carlstein, Ann. Statist. 14 (1986) 1171-1179; from memory). */
+function blockLength(lag1: number, n: number): number {
+  const length = ((2 * lag1) / (1 - lag1 * lag1)) ** (2 / 3) * n ** (1 / 3);
+  return Math.max(1, Math.min(Math.round(length), Math.floor(n / 4)));
+}
