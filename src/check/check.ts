@@ -11,6 +11,7 @@ import { exchanges } from "./exchanges.js";
 import { finiteValues } from "./finite.js";
 import { membersReached } from "./members.js";
 import { placeNames, streamTargets, unusedNames } from "./names.js";
+import { writtenZeros } from "./nothing.js";
 import type { Rule } from "./rule.js";
 import { splits } from "./splits.js";
 import { statedVolume } from "./stated-volume.js";
@@ -40,6 +41,7 @@ const otherRules: readonly Rule[] = [
   unusedNames,
   checkSubjects,
   statedVolume,
+  writtenZeros,
 ];
 
 /**

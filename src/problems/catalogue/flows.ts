@@ -187,6 +187,22 @@ export const flowEntries = {
       `'${name}' and '${partner}' exchange ${flow}, ${times} times what flows through them: they act as one tank`,
     fix: "make them one tank with the volume of both, or lower the exchange",
   }),
+  "stagnant-fast": entry<{ name: string; flow: string; times: string }>({
+    severity: "warning",
+    says: ({ name, flow, times }) =>
+      `'${name}' and its pockets exchange ${flow}, ${times} times what flows through: they act as one`,
+    fix: "add the pockets to the `volume` and leave `stagnant` out, or lower the exchange",
+  }),
+  "volume-zero": entry<{ name: string }>({
+    severity: "warning",
+    says: ({ name }) => `the volume of '${name}' is written as 0: it holds nothing`,
+    fix: "write `kind: junction` where streams only meet, or give it its volume",
+  }),
+  "share-zero": entry<{ name: string; to: string }>({
+    severity: "warning",
+    says: ({ name, to }) => `the share from '${name}' to '${to}' is written as 0: nothing flows there`,
+    fix: "take the stream out, or give it its share",
+  }),
   "volume-off": entry<{ sum: string; stated: string }>({
     severity: "warning",
     says: ({ sum, stated }) => `the volumes add to ${sum}, but the vessel is stated to hold ${stated}`,
