@@ -26,12 +26,13 @@ function commentsIn(text: string): Comment[] {
     if (token === null || typeof token !== "object") return;
     const { type, offset, source, ...inside } = token as { type?: string; offset?: number; source?: string };
     if (type === "comment" && offset !== undefined && source !== undefined) {
+      const own = startsLine(text, offset) || endsDocument(text, offset);
       found.push({
         at: offset,
         text: source.trimEnd(),
         // Behind the dash of an item it counts as above the item.
         column: startsLine(text, offset) ? indentAt(text, offset) : columnOf(text, offset),
-        own: startsLine(text, offset),
+        own,
         blank: startsLineAfterBlank(text, offset),
       });
     } else for (const value of Object.values(Array.isArray(token) ? token : inside)) walk(value);
@@ -39,6 +40,10 @@ function commentsIn(text: string): Comment[] {
   for (const token of new Parser().parse(text)) walk(token);
   return found.sort((a, b) => a.at - b.at);
 }
+
+/** Does it stand behind the `...` that ends a document? That goes, and the comment speaks of nothing on a line. */
+const endsDocument = (text: string, at: number): boolean =>
+  /(^|\n)\.\.\.[ \t]*$/.test(text.slice(Math.max(0, at - 80), at));
 
 function attach(comment: Comment, piece: CollectionPiece, text: string): void {
   const last = piece.parts.findLastIndex((p) => p.from < comment.at);
