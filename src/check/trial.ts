@@ -3,6 +3,7 @@ import { isClosed, type Network } from "../model/network.js";
 import type { Injection, Reading, Trial } from "../model/trial.js";
 import type { Value } from "../model/value.js";
 import type { Report } from "../problems/report.js";
+import { lateValues } from "../resolve/trial-on.js";
 import { nearest } from "../text/nearest.js";
 import { siUnit } from "../units/describe.js";
 import { type Dimension, dimensions, isRatio, over, sameDimension } from "../units/dimension.js";
@@ -53,8 +54,9 @@ function checkPlaces(network: Network, trial: Trial, report: Report): void {
       report("retained-unknown", factor.at, { name: factor.name, nearest: nearest(factor.name, known), known });
   }
   for (const [name, value] of trial.flows) look(name, value.at, "feed", feeds);
-  for (const [name, value] of trial.with) {
-    look(name, value.at, "constant", constants);
+  for (const [name, { at }] of trial.late ?? []) look(name, at, "constant", constants);
+  for (const [name, value] of [...trial.with, ...lateValues(network, trial, report)]) {
+    if (!trial.late?.has(name)) look(name, value.at, "constant", constants);
     const constant = network.names.find((n) => n.role === "constant" && n.name === name);
     if (constant) sameKind(constant.value.dimension, value, report);
   }

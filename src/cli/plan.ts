@@ -4,6 +4,7 @@ import { parseTrial } from "../parse/trial.js";
 import { planTest } from "../plan/plan.js";
 import { sheetHtml, sheetMarkdown } from "../plan/sheet.js";
 import { collector } from "../problems/report.js";
+import { trialOn } from "../resolve/trial-on.js";
 import type { Context } from "./context.js";
 import { requireParameters } from "./free.js";
 import { planJson } from "./json/plan.js";
@@ -33,10 +34,11 @@ export function plan(file: string, options: PlanCommandOptions, { inputs, io }: 
   const until = options.until === undefined ? undefined : oneTime(options.until, "--until", '"6 h"');
   const every = options.every === undefined ? undefined : oneTime(options.every, "--every", '"10 s"');
   const network = inputs.document(file, parseNetwork);
-  const trial = inputs.document(options.trial, parseTrial);
+  const declared = inputs.document(options.trial, parseTrial);
   const { report, problems } = collector();
-  checkTrial(network, trial, report);
+  checkTrial(network, declared, report);
   inputs.accept(problems);
+  const trial = trialOn(network, declared);
   if (options.free) requireParameters(network, options.free);
   const { plan: found, problems: why } = planTest(network, trial, {
     samples: options.samples,

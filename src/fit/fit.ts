@@ -5,6 +5,7 @@ import type { Network } from "../model/network.js";
 import type { Trial } from "../model/trial.js";
 import type { Problem } from "../problems/problem.js";
 import { collector, hasErrors, type Report } from "../problems/report.js";
+import { trialOn } from "../resolve/trial-on.js";
 import { untraceable } from "../simulate/trace.js";
 import { formatQuantity } from "../units/format.js";
 import { criteriaOf } from "./criteria.js";
@@ -61,11 +62,12 @@ export function fit(network: Network, trials: readonly Trial[], options: FitOpti
 export function fitWith(
   model: ForwardModel,
   network: Network,
-  trials: readonly Trial[],
+  declared: readonly Trial[],
   options: FitOptions = {},
 ): FitOutcome {
   const { report, problems } = collector();
-  for (const trial of trials) checkTrial(network, trial, report);
+  for (const trial of declared) checkTrial(network, trial, report);
+  const trials = declared.map((t) => trialOn(network, t));
   const setup = hasErrors(problems)
     ? undefined
     : prepare(model, network, trials, options.free, report, options.asItStands);

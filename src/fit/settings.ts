@@ -3,9 +3,11 @@ import type { Settings } from "../compile/plant.js";
 import type { Network } from "../model/network.js";
 import type { Trial } from "../model/trial.js";
 import type { Value } from "../model/value.js";
+import { trialOn } from "../resolve/trial-on.js";
 
 /** `values` with the flows and constants of the day of a trial laid over them, SI. */
-export function settingsOfDay(network: Network, trial: Trial, values: Settings): Settings {
+export function settingsOfDay(network: Network, declared: Trial, values: Settings): Settings {
+  const trial = trialOn(network, declared);
   if (trial.flows.size === 0 && trial.with.size === 0) return values;
   const env = evaluateNames(network, values);
   const day: Record<string, number> = { ...values };

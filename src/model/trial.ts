@@ -1,5 +1,6 @@
 import type { ClockFormat } from "../read/clock.js";
 import type { Series } from "../read/series.js";
+import type { ScalarNode } from "../read/tree.js";
 import type { Span } from "../text/source.js";
 import type { Unit } from "../units/unit.js";
 import type { Value } from "./value.js";
@@ -20,6 +21,8 @@ export interface Trial {
   readonly flowLogs?: ReadonlyMap<string, Series>;
   /** Constants that the day set otherwise. */
   readonly with: ReadonlyMap<string, Value>;
+  /** Those that are made of names of the network: values once it is known which. */
+  readonly late?: ReadonlyMap<string, ScalarNode>;
   readonly injections: readonly Injection[];
   /** Tracer that the vessel holds at the start. */
   readonly contents?: Contents | undefined;

@@ -1,9 +1,12 @@
+import { namesIn } from "../expressions/ast.js";
+import { isFault } from "../expressions/fault.js";
+import { parseValue } from "../expressions/parse.js";
 import type { Series, Trial } from "../model/trial.js";
 import type { Value } from "../model/value.js";
 import type { Report } from "../problems/report.js";
 import type { Files } from "../read/files.js";
 import { beside } from "../read/paths.js";
-import { child, entriesOf, itemsOf, type MapNode, type Tree, textOf } from "../read/tree.js";
+import { child, entriesOf, itemsOf, type MapNode, type ScalarNode, type Tree, textOf } from "../read/tree.js";
 import { type Dimension, dimensions } from "../units/dimension.js";
 import type { Unit } from "../units/unit.js";
 import { resolveContents } from "./contents.js";
@@ -74,7 +77,7 @@ export function resolveTrial(
   }
   if (logTables.some(({ log }) => !log)) return undefined;
   for (const flow of flows.values()) if (flow.uses.length === 0) aboveZero("the flow of a feed", flow, true, report);
-  const settings = values(child(tree, "with"), "any", scope, report);
+  const { settings, late } = settingsOf(child(tree, "with"), scope, report);
   const tracer = resolveTracer(child(tree, "tracer"), report);
   const whole = tracer !== "faulty" && [...injections, ...readings].every((part) => part !== undefined);
   if (!whole || (child(tree, "contents") && !contents)) return undefined;
@@ -89,6 +92,7 @@ export function resolveTrial(
     flows,
     ...(flowLogs.size > 0 ? { flowLogs } : {}),
     with: settings,
+    ...(late.size > 0 ? { late } : {}),
     injections: injections.filter((part) => part !== undefined),
     ...(contents ? { contents } : {}),
     readings: readings.filter((part) => part !== undefined),
@@ -103,6 +107,26 @@ const vesselPath = (node: Tree | undefined): string | undefined =>
 
 const mapsOf = (node: Tree | undefined): MapNode[] =>
   itemsOf(node).flatMap((item) => (item.type === "map" ? [item] : []));
+
+/** Constants of the day: numbers at once, what is made of names once the network is known. */
+function settingsOf(
+  node: Tree | undefined,
+  scope: Scope,
+  report: Report,
+): { settings: Map<string, Value>; late: Map<string, ScalarNode> } {
+  const settings = new Map<string, Value>();
+  const late = new Map<string, ScalarNode>();
+  for (const { key, value } of entriesOf(node)) {
+    const written = value.type === "scalar" ? parseValue(value.text) : undefined;
+    const open = written && !isFault(written) && namesIn(written.expression).some((n) => scope.slot(n) === undefined);
+    if (open) late.set(key.text, value as ScalarNode);
+    else {
+      const resolved = resolveValue(value, "any", scope, report);
+      if (resolved) settings.set(key.text, resolved);
+    }
+  }
+  return { settings, late };
+}
 
 function values(node: Tree | undefined, wanted: Dimension | "any", scope: Scope, report: Report): Map<string, Value> {
   const found = new Map<string, Value>();

@@ -1,4 +1,5 @@
 import { compile } from "../compile/compile.js";
+import { evaluateNames } from "../compile/evaluate.js";
 import type { Plant } from "../compile/plant.js";
 import { plantFollowing } from "../compile/sends.js";
 import type { MomentsOptions } from "../data/moments.js";
@@ -6,6 +7,7 @@ import type { WayOut } from "../data/result.js";
 import { isClosed, type Network } from "../model/network.js";
 import type { Study } from "../model/study.js";
 import type { Trial } from "../model/trial.js";
+import { trialOn } from "../resolve/trial-on.js";
 import { moments } from "../simulate/moments.js";
 import { tracerPlant } from "../simulate/tracer-plant.js";
 import { dimensions } from "../units/dimension.js";
@@ -20,9 +22,11 @@ export function momentsFacts(study: Study, trial: Trial): MomentsOptions {
  * Flow at every place, whole flow and volume of a network on the day of a trial, with their declared standard
  * deviations (one feed's flow stands for all its streams).
  */
-export function vesselFacts(network: Network, trial: Trial): MomentsOptions {
+export function vesselFacts(network: Network, declared: Trial): MomentsOptions {
+  const trial = trialOn(network, declared);
   const flows = Object.fromEntries([...trial.flows].map(([feed, flow]) => [`${feed}.flow`, flow.of([])]));
-  const constants = Object.fromEntries([...trial.with].map(([name, value]) => [name, value.of([])]));
+  const env = evaluateNames(network);
+  const constants = Object.fromEntries([...trial.with].map(([name, value]) => [name, value.of(env)]));
   const { plant } = compile(network, { ...flows, ...constants });
   if (!plant) return {};
   const throughflow = plant.feeds.reduce((sum, f) => sum + f.flow, 0);

@@ -163,7 +163,7 @@ export const trialShape = record({
   },
   with: {
     shape: named(quantity(), "dotted"),
-    says: "Constants of the network that the day set otherwise, the speed of a stirrer say.",
+    says: "Constants of the network that the day set otherwise, the speed of a stirrer say: numbers, or expressions over names of the network (`half: total / 2`), which have there what the network or the fit gives them.",
     example: "{speed: 90 1/min}",
   },
   injection: {
