@@ -111,7 +111,8 @@ function addSimulate(root: Command, { perform, inputs, io }: Stage): void {
         .default("auto"),
     )
     .option("--verify", "run a second engine and print the largest difference")
-    .option("-o, --output <file>", "write the curves, or what leaves every cell at a duty, to F.csv");
+    .option("-o, --output <file>", "write the curves, or what leaves every cell at a duty, to F.csv")
+    .option("--ages <file>", "with --pulse and --step: write mean age and life expectancy at every cell to F.csv");
   later(simulate, "--transient").action((network: string, options, self: Command) =>
     perform("simulate", async () => {
       refuseLater(self);

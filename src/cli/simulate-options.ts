@@ -12,4 +12,5 @@ export interface SimulateOptions extends TimeOptions {
   readonly engine: "auto" | "exact" | "ode" | "laplace" | "chebyshev" | "krylov";
   readonly verify?: true;
   readonly output?: string;
+  readonly ages?: string;
 }

@@ -3,6 +3,7 @@ import { followedIn, isClosed, type Network } from "../model/network.js";
 import { settlingTime, tracerResponse } from "../simulate/tracer.js";
 import { formatNumber, formatQuantity } from "../units/format.js";
 import { inUnit } from "../units/unit.js";
+import { agesCsv } from "./ages.js";
 import type { Context } from "./context.js";
 import { curvesCsv } from "./csv.js";
 import { engineBeside, engineNamed, largestDifference } from "./engines.js";
@@ -10,6 +11,7 @@ import { pure } from "./json/quantity.js";
 import { tracerJson } from "./json/tracer.js";
 import { type Outcome, UsageError } from "./outcome.js";
 import { plantAt } from "./plant.js";
+import { progressOn } from "./progress.js";
 import { requirePlace, settingsFrom } from "./settings.js";
 import type { SimulateOptions } from "./simulate-options.js";
 import { curvesOn } from "./text/plot.js";
@@ -40,9 +42,17 @@ export function simulateUnit(network: Network, options: SimulateOptions, { io }:
   const everywhere = closed ? network.compartments.map((c) => c.name).filter((name) => plant.exit.has(name)) : [];
   const at = options.at ?? everywhere;
   const engine = engineNamed(options.engine, plant, clock.si[clock.si.length - 1]);
-  const run = (by: typeof engine) => tracerResponse(plant, { at: into, form }, clock.si, { engine: by, at });
+  const progress = progressOn(io);
+  const run = (by: typeof engine) => {
+    const watch = (done: number, of: number): boolean => {
+      progress.say(`simulate: ${by.name}, ${Math.min(100, Math.round((100 * done) / of))} %`);
+      return io.cancelled();
+    };
+    return tracerResponse(plant, { at: into, form }, clock.si, { engine: by, at, watch });
+  };
   const result = run(engine);
   const other = options.verify ? run(engineBeside(engine, plant)) : undefined;
+  progress.done();
   const difference = other && largestDifference(...curvesOf(result, other));
   const valueUnit = form === "pulse" && !closed ? perUnit(clock.unit) : pureNumber;
   const areaUnit = closed ? clock.unit : pureNumber;
@@ -59,13 +69,14 @@ export function simulateUnit(network: Network, options: SimulateOptions, { io }:
       curvesCsv(curves, { time: clock.unit.name, value: valueUnit.name || "1", spike: areaUnit.name || "1" }),
     );
   }
+  if (options.ages !== undefined) io.write(options.ages, agesCsv(plant, clock.unit));
   const notes = [
     ...(result.stopped ? [`not converged: ${result.stopped}; what was found before is printed`] : []),
     ...(result.truncated ? ["tracer passes through tubes were cut off where they add nothing that counts"] : []),
   ];
   const last = clock.shown[clock.shown.length - 1];
   return {
-    status: result.stopped || other?.stopped ? 3 : 0,
+    status: !(result.stopped || other?.stopped) ? 0 : io.cancelled() ? 130 : 3,
     text: blocks(
       `${network.title}: a unit ${form} ${options.follows === undefined ? "" : `of ${options.follows} `}into ${into}, ${clock.shown.length} times to ${formatNumber(last)} ${clock.unit.name} (${result.engine})`,
       closed ? noMean : momentsTable(result.readings, clock.unit),
@@ -85,6 +96,7 @@ export function simulateUnit(network: Network, options: SimulateOptions, { io }:
         ? ""
         : `  engines: ${result.engine} and ${other.engine} differ by at most ${formatNumber(difference, 2)} of the peak`,
       options.output === undefined ? "" : `  curves: ${options.output}`,
+      options.ages === undefined ? "" : `  mean ages: ${options.ages}`,
     ),
     json: {
       ok: !result.stopped,
@@ -94,6 +106,7 @@ export function simulateUnit(network: Network, options: SimulateOptions, { io }:
         : { verify: { engines: [result.engine, other.engine], largestDifference: pure(difference).value } }),
       ...(result.stopped ? { stopped: result.stopped } : {}),
       ...(options.output === undefined ? {} : { written: options.output }),
+      ...(options.ages === undefined ? {} : { ages: options.ages }),
     },
     notes,
   };

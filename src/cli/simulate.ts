@@ -12,6 +12,14 @@ export async function simulate(file: string, options: SimulateOptions, context: 
   if (options.output !== undefined && !/\.csv$/i.test(options.output)) {
     throw new UsageError(`-o writes CSV: name a file that ends in .csv, not '${options.output}'`);
   }
+  if (options.ages !== undefined) {
+    if (options.pulse === undefined && options.step === undefined) {
+      throw new UsageError("--ages goes with --pulse or --step: mean ages are the network's own, with its own flows");
+    }
+    if (!/\.csv$/i.test(options.ages)) {
+      throw new UsageError(`--ages writes CSV: name a file that ends in .csv, not '${options.ages}'`);
+    }
+  }
   if (asked[0] === "duty") {
     for (const key of ["until", "points", "times", "verify"] as const) {
       if (options[key] !== undefined) throw new UsageError(`--${key} says nothing about the steady state of a duty`);

@@ -80,7 +80,8 @@ export function tracerResponse(
     drive,
     nodes.map((node) => ({ node, times: clock })),
   );
-  const found = isClosed(plant) ? undefined : moments(plant, entry, nodes);
+  // In large networks they cost more than the curves: found when they are asked for.
+  const found = once(() => (isClosed(plant) ? undefined : moments(plant, entry, nodes)));
   const readings = places.map((at, i): TracerReading => {
     const node = nodes[i];
     const pulse = injection.form === "pulse";
@@ -91,8 +92,13 @@ export function tracerResponse(
       value,
       cumulative: pulse ? seen[i].integral.map((c) => c * flow) : value,
       ...spikesOf(tracing.passagesAt(node), flow, pulse),
-      moments: found?.[i] ?? noMoments,
-      area: found && inflow > 0 ? (found[i].share * flow) / inflow : 0,
+      get moments() {
+        return found()?.[i] ?? noMoments;
+      },
+      get area() {
+        const share = found()?.[i].share ?? 0;
+        return inflow > 0 ? (share * flow) / inflow : 0;
+      },
     };
   });
   return {
@@ -102,6 +108,15 @@ export function tracerResponse(
     balance: tracing.balance(drive, until),
     stopped,
     truncated: tracing.truncated,
+  };
+}
+
+/** Does a job when its result is first asked for. */
+function once<T>(job: () => T): () => T {
+  let done: { readonly result: T } | undefined;
+  return () => {
+    done ??= { result: job() };
+    return done.result;
   };
 }
 

@@ -159,3 +159,33 @@ describe("a trial", () => {
     expect(at(document, "problems.0.file")).toBe("other.yaml");
   });
 });
+
+describe("mean ages", () => {
+  test("of every node, and the time yet to stay: age at the outlet is the mean time, as is what the feed has before it", async () => {
+    const { out, written } = await backmix(
+      ["simulate", "vessel.yaml", "--pulse", "feed", "--ages", "ages.csv", "--json"],
+      { files },
+    );
+    const document: unknown = JSON.parse(out);
+    expect(at(document, "ages")).toBe("ages.csv");
+    const [header, ...rows] = (written.get("ages.csv") ?? "").trim().split("\n");
+    expect(header).toBe("leaving,mean age [min],left to stay on entering [min]");
+    const of = (name: string) =>
+      rows
+        .find((r) => r.startsWith(`${name},`))
+        ?.split(",")
+        .slice(1)
+        .map(Number) ?? [];
+    const mean = at(document, "moments.0.mean.value") as unknown as number;
+    expect(of("product")[0]).toBeCloseTo(mean, 9);
+    expect(of("feed")[1]).toBeCloseTo(mean, 9);
+  });
+
+  test("need a pulse or a step, and a table to go to", async () => {
+    const trial = await backmix(["simulate", "vessel.yaml", "--trial", "t.yaml", "--ages", "a.csv"], { files });
+    expect(trial.status).toBe(2);
+    expect(trial.err).toContain("--ages goes with --pulse or --step");
+    const other = await backmix(["simulate", "vessel.yaml", "--pulse", "feed", "--ages", "a.txt"], { files });
+    expect(other.err).toContain("ends in .csv");
+  });
+});
