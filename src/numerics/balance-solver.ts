@@ -7,6 +7,8 @@ import { multiply, type SparseRows } from "./sparse.js";
 /** A part of the residual that a round of the iteration is to leave, and how many rounds and products it may take. */
 const goal = { relative: 1e-7, most: 4000 };
 const mostRounds = 40;
+/** Of what incomplete elimination leaves out, so much goes to the diagonal. */
+const kept = 0.95;
 /** A correction smaller than this beside the largest entry is rounding. */
 const settled = 2e-15;
 /** A residual smaller than this beside the terms that it is the sum of is rounding. */
@@ -36,7 +38,7 @@ export function balanceSolver(graph: Graph, part: ArrayLike<number>, excess: Flo
   for (let p = 0; p < n; p++) place[order[p]] = p;
   const outside = excess.map((_, p) => excess[order[p]]);
   const matrix = balanceMatrix(graph, part, outside, place);
-  const preconditioner = incompleteLu(matrix);
+  const preconditioner = incompleteLu(matrix, kept);
   if (!preconditioner.take(matrix.value)) return undefined;
   const iterate = bicgstab({ size: n, multiply: (x, y) => multiply(matrix, x, y), preconditioner });
   const [rhs, x, correction, residual] = [0, 1, 2, 3].map(() => new Float64Array(n));

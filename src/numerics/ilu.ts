@@ -11,10 +11,12 @@ export interface Preconditioner {
 /**
  * Incomplete LU with no entries beyond those of A, in the given row order: exact for chains of flow in order, close for the
  * M-matrices of upwind balances (which never meet a zero pivot).
+ * @param kept the part of what falls outside the pattern that is added to the diagonal instead: near 1, smooth answers come out
+ *   nearly right at once, which halves the iterations of large balances (I. Gustafsson, BIT 18 (1978) 142-156)
  * @see J.A. Meijerink, H.A. van der Vorst, Math. Comp. 31 (1977) 148-162; Y. Saad, Iterative Methods for Sparse Linear
  *      Systems, 2nd ed., SIAM 2003, sec. 10.3
  */
-export function incompleteLu({ size: n, start, column }: Pattern): Preconditioner {
+export function incompleteLu({ size: n, start, column }: Pattern, kept = 0): Preconditioner {
   const f = new Float64Array(column.length); // unit lower and upper factor, the diagonal of the upper one inverted
   const diagonal = new Int32Array(n).fill(-1);
   for (let i = 0; i < n; i++) for (let k = start[i]; k < start[i + 1]; k++) if (column[k] === i) diagonal[i] = k;
@@ -34,6 +36,7 @@ export function incompleteLu({ size: n, start, column }: Pattern): Preconditione
           for (let m = diagonal[j] + 1; m < start[j + 1]; m++) {
             const at = where[column[m]];
             if (at >= 0) f[at] -= l * f[m];
+            else f[diagonal[i]] -= kept * l * f[m];
           }
         }
         for (let k = start[i]; k < end; k++) where[column[k]] = -1;

@@ -77,7 +77,9 @@ const checked = (reference: string, contestants: readonly Contestant[]): Contest
 function details(standings: readonly { own: boolean; printed: Readonly<Record<string, unknown>> }[]): string[] {
   const own = standings.find((s) => s.own)?.printed ?? {};
   const seconds = (key: string): string => (typeof own[key] === "number" ? `${own[key].toPrecision(3)} s` : "-");
+  const small = (key: string): string => Number(own[key]).toExponential(1);
   return [
-    `backmix by '${String(own.method)}': first time in a process ${seconds("first_s")}, tables read and compiled in ${seconds("read_s")}, whole answer with moments and balance ${seconds("all_s")}`,
+    `backmix by '${String(own.method)}': curve, integral and balance; first time in a process ${seconds("first_s")}, tables read and compiled in ${seconds("read_s")}`,
+    `moments besides ${seconds("moments_s")}; mean off V/Q by ${small("mean_off")}, tracer balance by ${small("closure")}`,
   ];
 }
