@@ -6,10 +6,11 @@ import { chebyshev } from "../../src/simulate/chebyshev.js";
 import { exact } from "../../src/simulate/exact.js";
 import { krylov } from "../../src/simulate/krylov.js";
 import type { Drive } from "../../src/simulate/linear-system.js";
-import { trace } from "../../src/simulate/trace.js";
+import { trace, untraceable } from "../../src/simulate/trace.js";
 import { tracerResponse } from "../../src/simulate/tracer.js";
 import { peakOf, plantOf } from "./plants.js";
 import { randomNetwork } from "./random-network.js";
+import { zonedPlant } from "./zoned.js";
 
 /** A random network of tanks and junctions alone. */
 const cellsOnly = (seed: number): Plant => plantOf(randomNetwork(seed).replaceAll("kind: tubular", "kind: stirred"));
@@ -124,5 +125,48 @@ outlets: [out]
       expect(by(times.subarray(i, i + 1)).value[0]).toBe(all.value[i]);
       expect(by(times.subarray(i, i + 1)).cumulative[0]).toBe(all.cumulative[i]);
     }
+  });
+});
+
+describe("zones from tables", () => {
+  const curve = (plant: Plant, engine?: typeof chebyshev) => {
+    const times = grid(span(plant), 60);
+    return tracerResponse(plant, { at: "feed", form: "pulse" }, times, engine ? { engine } : {});
+  };
+  const difference = (a: Float64Array, b: Float64Array): number =>
+    a.reduce((most, v, i) => Math.max(most, Math.abs(v - b[i])), 0) / peakOf(a);
+
+  test.each([
+    ["rates near one another", 0.5, "chebyshev"],
+    ["volumes over four decades", 4, "krylov"],
+  ])("%s: the method suits the network, two agree, mean and balance hold", (_name, decades, name) => {
+    const plant = zonedPlant(8, decades);
+    const own = curve(plant);
+    expect(own.engine).toBe(name);
+    expect(own.stopped).toBeUndefined();
+    const other = curve(plant, name === "krylov" ? chebyshev : krylov);
+    expect(difference(own.readings[0].value, other.readings[0].value)).toBeLessThan(1e-9);
+    expect(difference(own.readings[0].cumulative, other.readings[0].cumulative)).toBeLessThan(1e-9);
+    expect(own.balance.closure).toBeLessThan(1e-10);
+    const tau = plant.volume.active / plant.feeds[0].flow;
+    expect(own.readings[0].moments.mean / tau - 1).toBeCloseTo(0, 12);
+  });
+
+  test("the order of the cells does not matter", () => {
+    const [one, other] = [zonedPlant(8, 1), zonedPlant(8, 1, (i) => (i * 211) % 512)].map((plant) => curve(plant));
+    expect(difference(one.readings[0].value, other.readings[0].value)).toBeLessThan(1e-11);
+  });
+
+  test("30,000 cells are no obstacle, and a run can be ended", () => {
+    const plant = zonedPlant(31, 0.5);
+    expect(untraceable(plant)).toEqual([]);
+    const calls: number[] = [];
+    const watch = (done: number, of: number): boolean => {
+      calls.push(done / of);
+      return calls.length > 5;
+    };
+    const ended = tracerResponse(plant, { at: "feed", form: "pulse" }, grid(span(plant), 9), { watch });
+    expect(ended.stopped).toContain("ended");
+    expect(calls.every((part, i) => part <= 1 && (i === 0 || part >= calls[i - 1]))).toBe(true);
   });
 });
