@@ -43,9 +43,10 @@ export function runStudy(study: Study, options: StudyOptions = {}): StudyResult 
     return fitRival(study, rival, options, cancelled);
   });
   const standing = standings(fitted.map((f) => f.fit));
-  const ranking = fitted
+  const ranked = fitted
     .map((f, i): Ranked => ({ ...f, standing: standing[i], survives: f.fit !== undefined && survives(standing[i]) }))
     .sort((a, b) => a.standing.difference - b.standing.difference);
+  const ranking = withProfiles(study, ranked, options, cancelled);
   const survivors = ranking.filter((r) => r.survives && r.plant);
   const draws = new Map<Rival, RivalDraws>();
   for (const r of survivors) if (!cancelled()) draws.set(r.rival, drawsOf(r, count, study.seed));
@@ -76,9 +77,23 @@ export function runStudy(study: Study, options: StudyOptions = {}): StudyResult 
   };
 }
 
-function fitRival(study: Study, rival: Rival, options: StudyOptions, cancelled: () => boolean) {
+/** Profiles of the best rival's parameters: the same fit once more, since nothing else of it is asked of the others. */
+function withProfiles(
+  study: Study,
+  ranking: readonly Ranked[],
+  options: StudyOptions,
+  cancelled: () => boolean,
+): Ranked[] {
+  const [best, ...others] = ranking;
+  if (!best?.fit?.converged || best.fit.parameters.length === 0 || cancelled()) return [...ranking];
+  const { fit: again } = fitRival(study, best.rival, options, cancelled, true);
+  return [again && !again.stopped ? { ...best, fit: again } : best, ...others];
+}
+
+function fitRival(study: Study, rival: Rival, options: StudyOptions, cancelled: () => boolean, profile = false) {
   const fitOptions: FitOptions = {
     seed: study.seed,
+    profile,
     asItStands: true,
     cancelled,
     ...(options.starts === undefined ? {} : { starts: options.starts }),

@@ -3,6 +3,7 @@ import { describe, expect, test } from "vitest";
 import { plotBars } from "../../src/draw/bars.js";
 import { plotCurves } from "../../src/draw/curves.js";
 import { columnsOf } from "../../src/draw/plotted.js";
+import { plotProfiles } from "../../src/draw/profiles.js";
 import { plotRegions, regionEdge } from "../../src/draw/regions.js";
 import { plotResiduals } from "../../src/draw/residuals.js";
 import { random } from "../../src/numerics/random.js";
@@ -43,6 +44,44 @@ describe("regions of pairs", () => {
   test("bear pairs that are one", () => {
     const pair = { x: axis("a", 1, 1), y: axis("b", 1, 1), correlation: 1.0000001 };
     expect(plotRegions({ title: "t", pairs: [pair], freedom: 3 }).drawing).not.toMatch(/NaN|undefined/);
+  });
+});
+
+describe("profiles", () => {
+  const value = Array.from({ length: 21 }, (_, k) => 5 + (k - 10) / 10);
+  const panel = { words: "a, L", value, interval: [4, 6] as const, through: [true, true] as const };
+  const lines = (deviation: number[]): string[][] => {
+    const { drawing } = plotProfiles({ title: "t", profiles: [{ ...panel, deviation }] });
+    return ["curve", "curve second"].map((c) =>
+      [...(new RegExp(`class="${c}" d="([^"]+)"`).exec(drawing)?.[1] ?? "").matchAll(/[-\d.]+ [-\d.]+/g)].map(
+        (m) => m[0],
+      ),
+    );
+  };
+  test("where linear theory holds, the curve lies on its parabola; where it does not, beside it", () => {
+    const [straight, theory] = lines(value.map((v) => 1.96 * (v - 5)));
+    const at = (points: string[], x: number): number => {
+      const near = points.map((p) => p.split(" ").map(Number)).sort((a, b) => Math.abs(a[0] - x) - Math.abs(b[0] - x));
+      return near[0][1];
+    };
+    const xs = straight.map((p) => Number(p.split(" ")[0]));
+    for (const x of xs.slice(1, -1)) expect(Math.abs(at(straight, x) - at(theory, x))).toBeLessThan(9);
+    const [bent, tangent] = lines(value.map((v) => 1.96 * (v - 5) + 1.2 * (v - 5) ** 2));
+    expect(at(bent, xs[1]) - at(tangent, xs[1])).toBeGreaterThan(20);
+  });
+  test("bear an open side, a step and a single value", () => {
+    const odd = [
+      {
+        ...panel,
+        deviation: value.map(() => 0.01),
+        interval: [undefined, undefined] as const,
+        through: [false, false] as const,
+      },
+      { words: "b", value: [1], deviation: [0], interval: [1, 1] as const, through: [false, false] as const },
+    ];
+    const { drawing } = plotProfiles({ title: "t", profiles: odd });
+    expect(drawing).not.toMatch(/NaN|undefined|Infinity/);
+    expect(drawing).toContain("a, L: open to open");
   });
 });
 

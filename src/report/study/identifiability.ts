@@ -1,3 +1,4 @@
+import { type ProfilePanel, plotProfiles } from "../../draw/profiles.js";
 import { plotRegions, type RegionAxis, type RegionPair } from "../../draw/regions.js";
 import { typeset } from "../../draw/scale.js";
 import type { FittedParameter } from "../../fit/result.js";
@@ -34,7 +35,7 @@ export function identifiabilityOf(best: Ranked): Identifiability {
         ? `${optima[0].starts} descent${optima[0].starts === 1 ? "" : "s"} from different starts ended at these values, none at others that fit nearly as well.`
         : "",
   ].filter((s) => s !== "");
-  return { says, correlations, figures: regions(best, correlations) };
+  return { says, correlations, figures: [...profiles(best), ...regions(best, correlations)] };
 }
 
 function pairsOf(best: Ranked): Identifiability["correlations"] {
@@ -45,6 +46,29 @@ function pairsOf(best: Ranked): Identifiability["correlations"] {
     names.slice(i + 1).map((other, j) => ({ one, other, value: correlation(i, i + 1 + j) })),
   );
   return pairs.filter((p) => Number.isFinite(p.value)).sort((a, b) => Math.abs(b.value) - Math.abs(a.value));
+}
+
+function profiles({ fit, rival }: Ranked): Figure[] {
+  const panels = (fit?.profiles ?? []).map((p): ProfilePanel => {
+    const shown = (v: number | undefined): number | undefined => (v === undefined ? undefined : inUnit(v, p.unit));
+    return {
+      words: `${p.name}${p.unit.name === "" ? "" : `, ${typeset(p.unit.name)}`}`,
+      value: p.value.map((v) => inUnit(v, p.unit)),
+      deviation: p.deviation,
+      interval: [shown(p.interval95[0]), shown(p.interval95[1])],
+      through: [p.ends[0] === "smooth", p.ends[1] === "smooth"],
+    };
+  });
+  if (panels.length === 0) return [];
+  const title = `Profiles of the parameters of '${rival.network.title}'`;
+  return [
+    {
+      name: "profiles",
+      ...plotProfiles({ title, profiles: panels }, { untitled: true }),
+      caption:
+        "How the misfit rises as each parameter is held beside its best value and the others follow; where it reaches the line the tests alone rule the value out (95 %). Dashed: what linear theory takes it for; where the two part, believe the profile. The bar on the axis also carries what declared ± bring. A flat stretch is what the tests cannot tell.",
+    },
+  ];
 }
 
 function regions({ fit, rival }: Ranked, correlations: Identifiability["correlations"]): Figure[] {
