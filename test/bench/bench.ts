@@ -12,12 +12,13 @@ import { p3 } from "./cases/p3.js";
 import { p4 } from "./cases/p4.js";
 import { p5 } from "./cases/p5.js";
 import { startUp } from "./cases/start-up.js";
+import { watch } from "./cases/watch.js";
 import { type Bench, type Planned, type Setting, smallest } from "./cases.js";
 import { contest, type Standing } from "./contest.js";
 import { findPeers } from "./peers.js";
 import { fittedExponent, standingsTable } from "./print.js";
 
-const benches: readonly Bench[] = [startUp, p1, log, p2, p3, p4, p5];
+const benches: readonly Bench[] = [startUp, p1, log, p2, p3, p4, p5, watch];
 const usage = `usage: npm run bench -- [CASE …] [SIZE …] [--rounds N] [--quick] [--own]
 cases: ${benches.map((b) => b.name).join(", ")}; a size selects among the lattices of p2 and p3; --quick leaves out those over 64,000 cells;
 --own runs no peers`;

@@ -4,8 +4,10 @@ import { p1 } from "./own/p1.js";
 import { p2 } from "./own/p2.js";
 import { p3 } from "./own/p3.js";
 import { p4 } from "./own/p4.js";
+import { watch } from "./own/watch.js";
 
-const jobs: Readonly<Record<string, (args: string[]) => Record<string, unknown>>> = { p1, log, p2, p3, p4 };
+type Job = (args: string[]) => Record<string, unknown> | Promise<Record<string, unknown>>;
+const jobs: Readonly<Record<string, Job>> = { p1, log, p2, p3, p4, watch };
 const [name, ...args] = process.argv.slice(2);
-const printed = jobs[name](args);
+const printed = await jobs[name](args);
 console.log(JSON.stringify({ ...printed, peak_kB: process.resourceUsage().maxRSS }));

@@ -1,11 +1,12 @@
 import { parseAny } from "../../parse/any.js";
 import { parseChemistry } from "../../parse/chemistry.js";
 import { parseNetwork } from "../../parse/network.js";
-import type { ParseOptions } from "../../parse/parsed.js";
+import { type Parsed, type ParseOptions, readDocument } from "../../parse/parsed.js";
 import { parseStudy } from "../../parse/study.js";
 import { parseTrial } from "../../parse/trial.js";
 import type { Problem } from "../../problems/problem.js";
 import { hasErrors } from "../../problems/report.js";
+import { documentKind } from "../../read/shape.js";
 import type { Figure } from "../input.js";
 import { chemistryFigures } from "./chemistry-figures.js";
 import { networkFigures } from "./network-figures.js";
@@ -24,6 +25,10 @@ export interface LiveView {
 
 /** Draws any document. Never throws on bad input; fast, nothing is fitted. */
 export function liveView(text: string, options: ParseOptions & { readonly path: string }): LiveView {
+  const reading = readDocument(text, options.path);
+  const only = reading.tree && documentKind(reading.tree);
+  if (only === "study") return drawn(options.path, "study", parseStudy(reading, options), studyFigures);
+  if (only === "chemistry") return drawn(options.path, "chemistry", parseChemistry(reading, options), chemistryFigures);
   const { kind, network, problems } = parseAny(text, options);
   const bare = { kind, title: options.path, figures: [], problems };
   if (hasErrors(problems)) return bare;
@@ -34,15 +39,17 @@ export function liveView(text: string, options: ParseOptions & { readonly path: 
     const vessel = document.vessel === undefined ? undefined : vesselAt(document.vessel, options);
     return { ...bare, title: document.title, figures: trialFigures(document, vessel) };
   }
-  if (kind === "chemistry") {
-    const { document } = parseChemistry(text, options);
-    return document ? { ...bare, title: document.title, figures: chemistryFigures(document) } : bare;
-  }
-  if (kind === "study") {
-    const { document } = parseStudy(text, options);
-    return document ? { ...bare, title: document.title, figures: studyFigures(document) } : bare;
-  }
   return bare;
+}
+
+function drawn<T extends { readonly title: string }>(
+  path: string,
+  kind: string,
+  { document, problems }: Parsed<T>,
+  figures: (document: T) => readonly Figure[],
+): LiveView {
+  const sound = document && !hasErrors(problems) ? document : undefined;
+  return { kind, title: sound?.title ?? path, figures: sound ? figures(sound) : [], problems };
 }
 
 function vesselAt(path: string, options: ParseOptions) {
