@@ -56,7 +56,9 @@ export function streamKeys(streams: readonly Stream[], env: ArrayLike<number>, t
   const fixed = streams.some(({ split }) => split.is === "flow");
   const shares = streams.reduce((sum, { split }) => sum + (split.is === "share" ? split.value.of(env) : 0), 0);
   return new Map(
-    streams.map(({ to, enters, split }): [string, string] => {
+    streams.map(({ to, enters, leaves, split }): [string, string] => {
+      // How much leaves by an outlet of a zoned body is told by its table.
+      if (leaves !== undefined) return [`${whole(t, to, enters)} from ${leaves}`, "its table"];
       const key = (): string => {
         if ("value" in split) {
           const number = split.is === "share" && split.value.expression.type === "number" && !split.value.sd;

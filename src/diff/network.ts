@@ -16,6 +16,7 @@ import { carriedKeys, exchangesOf, streamKeys, type Translate, valueKey, wordsOf
 import { type Matching, matchNames, type Side } from "./match.js";
 import { collapseParts } from "./parts.js";
 import { carriedWords, places, type Streams, streamWords, type Told, valueWords } from "./words.js";
+import { zoneChanges } from "./zones.js";
 
 /** What two networks differ in, in the order of a file, and which of their names are the same. */
 export interface NetworkDiff {
@@ -117,7 +118,11 @@ function bodyChanges(x: Compartment, y: Compartment, a: Read, b: Read): Change[]
   const others = keysOf(p, q).flatMap((key) =>
     p[key] === q[key] ? [] : [change(key, String(p[key] ?? "none"), String(q[key] ?? "none"), x.at, y.at)],
   );
-  return [...kind, ...values, ...others, ...sendsChanges(x, y, a, b)];
+  const tables =
+    x.zones && y.zones
+      ? zoneChanges({ zones: x.zones, at: x.at, network: a.network }, { zones: y.zones, at: y.at, network: b.network })
+      : [];
+  return [...kind, ...values, ...others, ...sendsChanges(x, y, a, b), ...tables];
 }
 
 /** Substances that divide otherwise than the liquid: the shares of the streams, in any order. */
