@@ -118,30 +118,47 @@ export class FlowBlocks {
    * @returns how far it fell
    */
   solve(b: Float64Array, x: Float64Array, relative: number, most: number): number {
-    const { n, rows, rhs, sweep } = this;
-    const { start, middle, column, share } = rows;
-    const nn = n * n;
+    this.scale(b, this.z);
+    this.foreSweep(this.z, this.rhs);
+    x.fill(0);
+    const { residual } = this.iterate(this.rhs, x, { relative, most, rough: true });
+    this.backSweep(x, x);
+    return residual;
+  }
+
+  /** v_i = Delta_i^-1 b_i */
+  private scale(b: Float64Array, v: Float64Array): void {
+    const { n, rows, sweep } = this;
     const special = this.inverse.size > 0;
-    const sum = new Float64Array(n);
     for (let p = 0; p < rows.size; p++) {
-      for (let k = 0; k < n; k++) sum[k] = 0;
-      for (let e = start[p]; e < middle[p]; e++) {
-        for (let k = 0; k < n; k++) sum[k] += share[e] * rhs[column[e] * n + k];
-      }
       const inverse = special ? this.inverse.get(p) : undefined;
       for (let i = 0; i < n; i++) {
         let value = 0;
         for (let k = 0; k < n; k++) {
-          const s = sweep[p * nn + i * n + k];
-          value += s * sum[k] + (inverse ? inverse[i * n + k] : s) * b[p * n + k];
+          value += (inverse ? inverse[i * n + k] : sweep[(p * n + i) * n + k]) * b[p * n + k];
         }
-        rhs[p * n + i] = value;
+        v[p * n + i] = value;
       }
     }
-    x.fill(0);
-    const { residual } = this.iterate(rhs, x, { relative, most, rough: true });
-    this.backSweep(x, x);
-    return residual;
+  }
+
+  /** z_i = v_i + Delta_i^-1 B_i (what comes from before); z may be v. */
+  private foreSweep(v: Float64Array, z: Float64Array): void {
+    const { n, rows, sweep } = this;
+    const { start, middle, column, share } = rows;
+    const nn = n * n;
+    const sum = this.scratch;
+    for (let p = 0; p < rows.size; p++) {
+      for (let k = 0; k < n; k++) sum[k] = 0;
+      for (let e = start[p]; e < middle[p]; e++) {
+        for (let k = 0; k < n; k++) sum[k] += share[e] * z[column[e] * n + k];
+      }
+      for (let i = 0; i < n; i++) {
+        let value = v[p * n + i];
+        for (let k = 0; k < n; k++) value += sweep[p * nn + i * n + k] * sum[k];
+        z[p * n + i] = value;
+      }
+    }
   }
 
   /** w_i = v_i + Delta_i^-1 B_i (what comes from behind); w may be v. */
@@ -149,7 +166,7 @@ export class FlowBlocks {
     const { n, rows, sweep } = this;
     const { start, middle, column, share } = rows;
     const nn = n * n;
-    const sum = new Float64Array(n);
+    const sum = this.scratch;
     for (let p = rows.size - 1; p >= 0; p--) {
       for (let k = 0; k < n; k++) sum[k] = 0;
       for (let e = middle[p]; e < start[p + 1]; e++) {
@@ -165,29 +182,22 @@ export class FlowBlocks {
 
   /** What is left of A between the sweeps: v to w = (1 + Delta^-1 U)^-1 v, and w + (1 + Delta^-1 L)^-1 (v + (Delta^-1 D - 2) w). */
   private apply(v: Float64Array, out: Float64Array): void {
-    const { n, rows, sweep, excess, w, z } = this;
-    const { start, middle, column, share } = rows;
+    const { n, rows, excess, w, z } = this;
     const nn = n * n;
-    const sum = this.scratch;
     if (n === 2) {
       this.applyTwo(v, out);
       return;
     }
     this.backSweep(v, w);
     for (let p = 0; p < rows.size; p++) {
-      for (let k = 0; k < n; k++) sum[k] = 0;
-      for (let e = start[p]; e < middle[p]; e++) {
-        for (let k = 0; k < n; k++) sum[k] += share[e] * z[column[e] * n + k];
-      }
       for (let i = 0; i < n; i++) {
         let value = v[p * n + i];
-        for (let k = 0; k < n; k++) {
-          value += excess[p * nn + i * n + k] * w[p * n + k] + sweep[p * nn + i * n + k] * sum[k];
-        }
+        for (let k = 0; k < n; k++) value += excess[p * nn + i * n + k] * w[p * n + k];
         z[p * n + i] = value;
-        out[p * n + i] = w[p * n + i] + value;
       }
     }
+    this.foreSweep(z, z);
+    for (let k = 0; k < out.length; k++) out[k] = w[k] + z[k];
   }
 
   /** The same for two components, which most chemistries come down to. */

@@ -7,6 +7,7 @@ import { solveSmall } from "../numerics/small-dense.js";
 import type { Conserved } from "./conserved.js";
 import type { Pass } from "./dispersion.js";
 import type { Reactions } from "./kinetics.js";
+import { settleMixed } from "./mixed.js";
 import { type NewtonResult, type System, solveInexactNewton } from "./newton.js";
 
 /** Many nodes that feed one another, and what reaches them from elsewhere. Scaled concentrations, node by node. */
@@ -18,7 +19,8 @@ export interface Circle {
   /** What comes from elsewhere, in units of all that enters the node, and how much of that it is. */
   readonly outside: Float64Array;
   readonly excess: Float64Array;
-  /** Volume over all that enters, s. */
+  /** All that enters, m3/s, and volume over that, s. */
+  readonly inflow: Float64Array;
   readonly tau: Float64Array;
   readonly part: Uint8Array;
   /** What bodies that are not mixed throughout make of their inflow. */
@@ -26,13 +28,10 @@ export interface Circle {
 }
 
 const mostSteps = 2000;
-/** Sweeps over the nodes in flow order, each solved by itself, before all are solved together. */
-const sweeps = 2;
-const localSteps = 2;
 
 /**
  * The steady state of a large circle: species that follow from others are left out, since what no reaction changes only mixes;
- * then sweeps in flow order, and Newton's method with BiCGStab behind block-wise incomplete LU. Memory linear in nodes and
+ * then, from what one tank would make, a sweep in flow order, and Newton's method with BiCGStab behind block-wise incomplete LU. Memory linear in nodes and
  * links.
  * @param watch told the norm of what balances miss, step by step
  * @returns all species, node by node, and how the method ended; undefined where the flows admit no mixture
@@ -46,8 +45,8 @@ export function solveCircle(
   const rows = flowRows(circle.graph, circle.share);
   const mixed = mixtures(circle, reactions.cell.size);
   if (!mixed) return undefined;
-  const state = new CircleState(circle, rows, reactions, conserved, mixed, watch);
-  for (let k = 0; k < sweeps; k++) state.sweep();
+  const state = new CircleState(circle, rows, reactions, conserved, mixed, startOf(circle, reactions), watch);
+  state.sweep();
   const result = solveInexactNewton(state, state.x);
   const worst = state.fullIndex(result.worst);
   return { y: state.full(), result: { ...result, worst } };
@@ -79,6 +78,25 @@ function mixtures({ graph, share, outside, excess }: Circle, n: number): Float64
   return mixed;
 }
 
+/**
+ * What would be in one tank for the whole circle, over what would be there without reaction: a first idea of how far reaction
+ * gets, by species. Ones where it does not settle.
+ */
+function startOf({ outside, excess, inflow, tau }: Circle, { cell }: Reactions): Float64Array {
+  const n = cell.size;
+  const entering = new Float64Array(n);
+  let [fed, volume] = [0, 0];
+  for (let k = 0; k < inflow.length; k++) {
+    fed += inflow[k] * excess[k];
+    volume += inflow[k] * tau[k];
+    for (let i = 0; i < n; i++) entering[i] += inflow[k] * outside[k * n + i];
+  }
+  for (let i = 0; i < n; i++) entering[i] /= fed;
+  const tank = entering.slice();
+  const settled = settleMixed(cell, entering, volume / fed, tank);
+  return tank.map((c, i) => (settled && c > 0 && entering[i] > 0 ? Math.min(c / entering[i], 1) : 1));
+}
+
 /** The balances in the species that move freely, by place in flow order. */
 class CircleState implements System {
   readonly length: number;
@@ -104,6 +122,7 @@ class CircleState implements System {
     private readonly reactions: Reactions,
     private readonly conserved: Conserved,
     mixed: Float64Array,
+    start: Float64Array,
     readonly watch: ((norm: number) => void) | undefined,
   ) {
     const n = reactions.cell.size;
@@ -130,6 +149,7 @@ class CircleState implements System {
         for (let k = 0; k < r; k++) value -= follows[j * r + k] * this.x[p * r + k];
         this.fixed[p * d + j] = value;
       }
+      for (let k = 0; k < r; k++) this.x[p * r + k] *= start[free[k]];
     }
     this.mix = new Float64Array(r);
     this.local = new Float64Array(r);
@@ -216,30 +236,21 @@ class CircleState implements System {
     }
   }
 
-  /** A few Newton steps for one cell: what enters from itself and others stays as it is. */
+  /** One Newton step for one cell: what enters from itself and others stays as it is. */
   private settleCell(p: number): void {
-    const { size: r, x, mix, made, reduced, memory, conserved } = this;
+    const { size: r, x, mix, made, reduced, memory, conserved, local: step } = this;
     const at = p * r;
-    const { local: step } = this;
-    for (let round = 0; round < localSteps; round++) {
-      this.expand(p, x, at);
-      this.reactions.cell.production(this.all, 0, made, 0);
-      this.reactions.cell.jacobian(this.all, 0, this.slope, 0);
-      this.reduce();
-      for (let e = 0; e < r * r; e++) reduced[e] *= -memory[p];
-      let largest = 0;
-      for (let k = 0; k < r; k++) {
-        reduced[k * r + k] += 1;
-        step[k] = mix[k] - x[at + k] + memory[p] * made[conserved.free[k]];
-      }
-      if (!solveSmall(reduced, 0, r, step, 0, 1)) return;
-      for (let k = 0; k < r; k++) {
-        const to = Math.max(x[at + k] + step[k], this.fall * x[at + k]);
-        largest = Math.max(largest, Math.abs(to - x[at + k]));
-        x[at + k] = to;
-      }
-      if (largest < 1e-4) return;
+    this.expand(p, x, at);
+    this.reactions.cell.production(this.all, 0, made, 0);
+    this.reactions.cell.jacobian(this.all, 0, this.slope, 0);
+    this.reduce();
+    for (let e = 0; e < r * r; e++) reduced[e] *= -memory[p];
+    for (let k = 0; k < r; k++) {
+      reduced[k * r + k] += 1;
+      step[k] = mix[k] - x[at + k] + memory[p] * made[conserved.free[k]];
     }
+    if (!solveSmall(reduced, 0, r, step, 0, 1)) return;
+    for (let k = 0; k < r; k++) x[at + k] = Math.max(x[at + k] + step[k], this.fall * x[at + k]);
   }
 
   /** What enters at a place, into `mix`. */

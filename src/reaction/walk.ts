@@ -153,6 +153,7 @@ export class Walk {
       share: share.subarray(0, k),
       outside,
       excess,
+      inflow: Float64Array.from(nodes, (node) => inflow[node]),
       tau: Float64Array.from(nodes, (node) => volume[node] / inflow[node]),
       part: Uint8Array.from(nodes, (node) => part[node]),
       bodies,
