@@ -9,8 +9,8 @@ import { evaluate, stepPolynomial } from "./stiff-polynomial.js";
 export interface StiffStretch extends Stretch {
   /** Length of the first step, if something is known of it. */
   readonly firstStep?: number;
-  /** No step is longer. */
-  readonly longest?: number;
+  /** How long a step from t may be at most. */
+  readonly longest?: (t: number) => number;
   /** Error, in units of the tolerance, of what hangs on a trial step from t, y with stages y + z: it counts beside the state's. */
   readonly judge?: (t: number, h: number, y: Float64Array, z: readonly Float64Array[]) => number;
   /** Sees every accepted step; true pauses the run at its end. Arrays are reused. */
@@ -107,8 +107,8 @@ export function radauIntegrator(given: StiffProblem, relative: number, stages = 
       h *= part;
       factored = false;
     };
-    const longest = p.longest ?? Number.POSITIVE_INFINITY;
     for (;;) {
+      const longest = p.longest ? p.longest(t) : Number.POSITIVE_INFINITY;
       if (Math.abs(h) > longest) {
         h = direction * longest;
         factored = false;

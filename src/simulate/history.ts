@@ -97,6 +97,13 @@ export class History {
     this.steps++;
   }
 
+  /** Where the step begins that comes `count` steps after that which holds t; the end where there are none so late. */
+  stepAfter(t: number, count: number): number {
+    if (this.steps === 0) return 0;
+    const k = this.locate(Math.max(0, t), 1) + count;
+    return k < this.steps ? this.starts[k] : this.end;
+  }
+
   /** @param side 1: at a jump the value after it; -1: before */
   value(signal: number, t: number, side: number): number {
     if (this.steps === 0) return 0;

@@ -19,6 +19,18 @@ export interface Put {
   readonly before?: Float64Array | undefined;
 }
 
+/** Steps of what arrives that one step may take in. */
+const stepsAtOnce = 6;
+/** In mean times: nothing is worth shorter steps. */
+const shortestStep = 1e-9;
+const mostWays = 300;
+
+/** From a stage through delays. */
+interface Way {
+  readonly from: number;
+  readonly delays: readonly { readonly node: number; readonly volume: number }[];
+}
+
 /** Longest step, in mean times: whatever is asked, steps that begin before its end are the same. */
 const longestStep = 1 / 8;
 
@@ -60,7 +72,7 @@ export class Integration implements Surroundings {
         unit,
         scale,
         until: horizon + (stages - s) * unit * longestStep * 1.02,
-        longest: Math.min(unit * longestStep, 0.98 * loop),
+        longest: this.pace(s, stage, Math.min(unit * longestStep, 0.98 * loop), unit),
         breaks: this.arrivals.breaks[s],
         kicks: this.arrivals.kicks.filter((k) => numbers.has(k.node)),
         wanted,
@@ -222,7 +234,7 @@ export class Integration implements Surroundings {
         maxSteps: 1e7,
         outputs: due,
         firstStep: Math.min(lag, unit) * 1e-4,
-        longest: unit * longestStep,
+        longest: () => unit * longestStep,
         accepted: (t: number, h: number) => t + h >= this.horizon,
       };
       integrator(stretch, y, (row) => {
@@ -311,6 +323,50 @@ export class Integration implements Surroundings {
   /** The node that most is put into. */
   private get node(): number {
     return [...this.put.entry].reduce((a, b) => (b[1] > a[1] ? b : a), [-1, -1])[0];
+  }
+
+  /**
+   * Steps of a stage go on at about the pace at which others went when they made what now arrives: so nothing narrow that comes
+   * out of a tube is stepped over.
+   */
+  private pace(own: number, stage: Stage, most: number, unit: number): (t: number) => number {
+    const ways = this.waysInto(own, stage);
+    const least = shortestStep * unit;
+    return (t) => {
+      let longest = most;
+      for (const { from, delays } of ways) {
+        const { history } = this.answers[from];
+        let then = t;
+        for (const { node, volume } of delays) if (then > 0) then = this.course.entered(node, then, volume);
+        let next = history.stepAfter(then, stepsAtOnce);
+        if (from !== own && next <= then) continue; // nothing more comes
+        for (let i = delays.length - 1; i >= 0; i--) next = this.course.leaves(delays[i].node, next, delays[i].volume);
+        longest = Math.min(longest, next - t);
+      }
+      return Math.max(longest, least);
+    };
+  }
+
+  /** Where what arrives in a stage was integrated, and the delays that it has passed since, last first. */
+  private waysInto(own: number, { mixing, held }: Stage): Way[] {
+    const { sort, lag, looped, stage, block } = this.net;
+    const ways = new Map<string, Way>();
+    const add = (from: number, delays: Way["delays"]): void => {
+      if (ways.size < mostWays) ways.set(`${from}:${delays.map((d) => d.node).join()}`, { from, delays });
+    };
+    const enter = (node: number, delays: Way["delays"]): void => {
+      const passed = [...delays, { node, volume: lag[node] }];
+      if (looped[node]) add(stage[node], passed);
+      else if (ways.size < mostWays) for (const source of this.mixingOf(node).mixing.sources) come(source, passed);
+    };
+    const come = (node: number, delays: Way["delays"]): void => {
+      if (sort[node] === "delay") enter(node, delays);
+      else if (stage[node] !== own || delays.length > 0) add(stage[node], delays);
+      if (sort[node] === "block" && (block[node]?.direct ?? 0) !== 0) enter(node, delays);
+    };
+    for (const source of mixing.sources) come(source, []);
+    for (const h of held) if (h.target < 0) enter(h.node, []);
+    return [...ways.values()];
   }
 
   /** All that is put in, for measure. */

@@ -62,10 +62,12 @@ export function integrate(plant: Plant, course: FlowCourse, horizon: number, put
         looks.map((l) => l.node),
       );
       const seen = looks.map(({ node, times, lag = 0, integral = true }) => {
-        const value = lag > 0 ? run.lagged(node, lag, times) : times.map((t) => (t < 0 ? 0 : run.leaving(node, t, 1)));
+        const end = run.stopped?.t ?? Number.POSITIVE_INFINITY; // nothing is known later
+        const all = lag > 0 ? run.lagged(node, lag, times) : times.map((t) => (t < 0 ? 0 : run.leaving(node, t, 1)));
+        const value = all.map((c, i) => (times[i] > end ? Number.NaN : c));
         // What a detector has not shown yet, it holds.
         const sum = (t: number, i: number): number =>
-          t < 0 ? 0 : run.integral(node, t) + spikesUntil(run, node, t, course) - lag * value[i];
+          t < 0 ? 0 : t > end ? Number.NaN : run.integral(node, t) + spikesUntil(run, node, t, course) - lag * value[i];
         return { value, integral: integral && course.constant ? times.map(sum) : new Float64Array(times.length) };
       });
       const { stopped } = run;

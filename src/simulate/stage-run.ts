@@ -24,7 +24,8 @@ export interface StageAsk {
   readonly scale: number;
   /** How far to go, s. */
   readonly until: number;
-  readonly longest: number;
+  /** How long a step from t may be at most, s. */
+  readonly longest: (t: number) => number;
   readonly breaks: Float64Array;
   readonly kicks: readonly Kick[];
   /** Cells and blocks whose outflow is wanted. */
@@ -164,12 +165,26 @@ export function runStage(stage: Stage, ask: StageAsk, given: (answer: StageAnswe
     const result = integrator(stretch, x, () => undefined);
     answer.steps += result.steps;
     if (result.halt) {
-      answer.stopped = { t: result.t, why: result.halt, node: -1 };
+      answer.stopped = { t: result.t, why: result.halt, node: fastest(stage, result.t, x) };
       break;
     }
     if (result.paused) break;
   }
   return answer;
+}
+
+/** Which cell or block changes fastest, for its size. */
+function fastest(stage: Stage, t: number, x: Float64Array): number {
+  const dx = new Float64Array(x.length);
+  if (stage.size > 0) stage.rhs(t, x, dx, 1);
+  let [worst, most] = [0, -1];
+  stage.held.forEach(({ offset, size }, n) => {
+    for (let i = offset; i < offset + size; i++) {
+      const rate = Number.isFinite(dx[i]) ? Math.abs(dx[i]) : Number.POSITIVE_INFINITY;
+      if (rate > most) [worst, most] = [n, rate];
+    }
+  });
+  return worst;
 }
 
 /** An end that does not hang on what is asked, unless that is very late. */
