@@ -22,7 +22,9 @@ export function engineNamed(name: SimulateOptions["engine"], plant: Plant, until
 export function engineBeside(engine: AnyEngine, plant: Plant): AnyEngine {
   if (engine === chebyshev) return krylov;
   if (engine === krylov) return chebyshev;
-  return engine === ode ? engineFor(plant) : ode;
+  if (engine !== ode) return ode;
+  const other = engineFor(plant);
+  return other === ode ? laplace : other;
 }
 
 /** Largest difference between two sets of curves, as a fraction of the largest value of the first. */

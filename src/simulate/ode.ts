@@ -8,8 +8,8 @@ import { type FlowCourse, steadyCourse } from "./flow-course.js";
 import { integrable } from "./integrable.js";
 import { Integration, type Put } from "./integration.js";
 import { type Drive, instant } from "./linear-system.js";
-import { unrolledTracing } from "./trace.js";
 import type { TracerWay, Tracing } from "./tracing.js";
+import { unrolledTracing } from "./unrolled-tracing.js";
 
 /** Plants of more nodes, without blocks, are stepped explicitly where they are not stiff. */
 const manyNodes = 1500;

@@ -11,9 +11,9 @@ import { exact } from "./exact.js";
 import { krylov } from "./krylov.js";
 import { laplace } from "./laplace.js";
 import type { TracerEngine } from "./linear-system.js";
-import { balanceAt, see } from "./respond.js";
+import { ode } from "./ode.js";
 import type { TracerWay, Tracing, WatchTracing } from "./tracing.js";
-import { unroll } from "./unroll.js";
+import { unrolledTracing } from "./unrolled-tracing.js";
 
 /** An engine of either sort: one that integrates what is left when tubes are unrolled, or one with a way of its own. */
 export type AnyEngine = TracerEngine | TracerWay;
@@ -34,8 +34,23 @@ const manyTurns = 30_000;
  */
 export function engineFor(plant: Plant, horizon = 0): AnyEngine {
   const { part } = plant.columns;
-  if (part.includes(Part.Block) || (isClosed(plant) && passesIn(plant, horizon) > fewPasses)) return laplace;
+  if (part.includes(Part.Block)) return manyWaysRound(plant) ? ode : laplace;
+  if (isClosed(plant) && passesIn(plant, horizon) > fewPasses) return laplace;
   return isLarge(plant) ? largeEngine(plant, horizon) : exact;
+}
+
+/** Delays in circles from here on make more different passes than laplace can take apart in good time. */
+const manyDelays = 3;
+
+/** Do several delays lie in circles, where integration bears all bodies? */
+function manyWaysRound(plant: Plant): boolean {
+  if (isClosed(plant)) return false;
+  const round = plant.groups.filter((group) => group.length > 1).flatMap((group) => [...group]);
+  const late = round.filter((i) => {
+    const { part, inflow, volume, block } = plant.nodes[i];
+    return inflow > 0 && volume > 0 && (part === Part.Delay || (block?.delay(inflow) ?? 0) > 0);
+  });
+  return late.length >= manyDelays && uncarried(plant, "ode").length === 0;
 }
 
 /** For many cells: one series where their rates lie near each other, a space of solves where they are far apart. */
@@ -80,25 +95,4 @@ export function trace(
   // Elsewhere a pass that is given up carries next to nothing; in a closed vessel it carries what the first did.
   if (isClosed(plant) && tracing.truncated) throw new RefusedError([problem("too-many-passes", plant.network.at, {})]);
   return tracing;
-}
-
-/** By an engine that integrates what is left when tubes are unrolled. */
-export function unrolledTracing(plant: Plant, entry: Entry, horizon: number, engine: TracerEngine): Tracing {
-  const unrolled = unroll(plant, entry, horizon);
-  return {
-    truncated: unrolled.truncated,
-    passagesAt: (node) => unrolled.outflow(node),
-    balance: (drive, until) => balanceAt(plant, unrolled, drive, until, engine),
-    see: (drive, looks) =>
-      see(
-        unrolled,
-        drive,
-        looks.map(({ node, times, lag, integral }) => ({
-          passages: unrolled.outflow(node).map((p) => (lag ? { ...p, lag } : p)),
-          times,
-          ...(integral === undefined ? {} : { integral }),
-        })),
-        engine,
-      ),
-  };
 }

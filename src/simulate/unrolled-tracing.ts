@@ -1,0 +1,27 @@
+import type { Plant } from "../compile/plant.js";
+import type { Entry } from "./entry.js";
+import type { TracerEngine } from "./linear-system.js";
+import { balanceAt, see } from "./respond.js";
+import type { Tracing } from "./tracing.js";
+import { unroll } from "./unroll.js";
+
+/** By an engine that integrates what is left when tubes are unrolled. */
+export function unrolledTracing(plant: Plant, entry: Entry, horizon: number, engine: TracerEngine): Tracing {
+  const unrolled = unroll(plant, entry, horizon);
+  return {
+    truncated: unrolled.truncated,
+    passagesAt: (node) => unrolled.outflow(node),
+    balance: (drive, until) => balanceAt(plant, unrolled, drive, until, engine),
+    see: (drive, looks) =>
+      see(
+        unrolled,
+        drive,
+        looks.map(({ node, times, lag, integral }) => ({
+          passages: unrolled.outflow(node).map((p) => (lag ? { ...p, lag } : p)),
+          times,
+          ...(integral === undefined ? {} : { integral }),
+        })),
+        engine,
+      ),
+  };
+}
