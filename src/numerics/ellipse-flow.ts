@@ -10,7 +10,7 @@ interface Look {
 }
 
 /** What a series leaves out, beside the scale of the sum. */
-const leftOut = 1e-12;
+const leftOut = 1e-11;
 /** Vectors made at a time. */
 const block = 16;
 
@@ -65,7 +65,7 @@ export class EllipseFlow {
    * Sum of coefficients times the numbers of a look, vectors being made as they are wanted, until what is left counts no more.
    * It depends on the coefficients alone, not on what was asked before.
    * @param c      beyond their largest they fall
-   * @param scale  of the sum: it is good to 1e-12 of this
+   * @param scale  of the sum: it is good to 1e-11 of this
    * @param largest is told the largest term
    */
   sum(look: number, c: Float64Array, scale: number, largest: { term: number } = { term: 0 }): number {

@@ -24,7 +24,7 @@ export interface Ellipse {
 }
 
 /** Rounds of the iteration for the largest rate: more would make the ellipse a few percent smaller. */
-const rounds = 6;
+const rounds = 4;
 /** The flow through a cell beside what is exchanged makes rates complex; so much more than its bound is room for transients. */
 const room = 1.3;
 
@@ -34,20 +34,13 @@ const room = 1.3;
  * @param volume of each state
  */
 export function ellipseOf(rows: MixedRows, volume: ArrayLike<number>): Ellipse {
-  const { size, states, start, column, value } = rows;
+  const { size, states } = rows;
   let x = new Float64Array(size).fill(1, 0, states);
   let y = new Float64Array(size);
   let most = Number.POSITIVE_INFINITY;
   for (let round = 0; round < rounds; round++) {
     settle(rows, x);
-    let [bound, top] = [0, 0];
-    for (let i = 0; i < states; i++) {
-      let sum = 0;
-      for (let e = start[i]; e < start[i + 1]; e++) sum += Math.abs(value[e]) * x[column[e]];
-      y[i] = sum;
-      if (sum > bound * x[i]) bound = sum / x[i];
-      if (sum > top) top = sum;
-    }
+    const { bound, top } = boundBy(rows, x, y);
     most = Math.min(most, bound);
     if (!(top > 0)) break;
     for (let i = 0; i < states; i++) y[i] = Math.max(y[i] / top, 1e-30);
@@ -55,6 +48,21 @@ export function ellipseOf(rows: MixedRows, volume: ArrayLike<number>): Ellipse {
   }
   const half = Number.isFinite(most) && most > 0 ? most / 2 : 1;
   return { half, height: Math.min(half, room * unevenness(rows, volume)) };
+}
+
+/** y = |A| x by states; the largest y over x, which is a bound, and the largest y. */
+function boundBy({ states, start, column, value }: MixedRows, x: Float64Array, y: Float64Array) {
+  let bound = 0;
+  let top = 0;
+  let e = 0;
+  for (let i = 0; i < states; i++) {
+    let sum = 0;
+    for (const end = start[i + 1]; e < end; e++) sum += Math.abs(value[e]) * x[column[e]];
+    y[i] = sum;
+    if (sum > bound * x[i]) bound = sum / x[i];
+    if (sum > top) top = sum;
+  }
+  return { bound, top };
 }
 
 /** Largest sum over the neighbours of a state of half the flow between them that does not come back, over its volume. */

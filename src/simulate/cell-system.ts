@@ -39,10 +39,14 @@ function jointsInOrder({ columns, from, to }: Plant): number[] | undefined {
   return groups.every((g) => g.length === 1) ? groups.map(([j]) => joints[j]) : undefined;
 }
 
+function hasCellsOnly({ columns: { size, part } }: Plant): boolean {
+  for (let i = 0; i < size; i++) if (part[i] !== Part.Cell && part[i] !== Part.Joint) return false;
+  return true;
+}
+
 /** Is a plant made of cells and joints alone, no joints in a circle, every cell with a volume? */
 export function isCellsOnly(plant: Plant): boolean {
-  const { part } = plant.columns;
-  return part.every((p) => p === Part.Cell || p === Part.Joint) && jointsInOrder(plant) !== undefined;
+  return hasCellsOnly(plant) && jointsInOrder(plant) !== undefined;
 }
 
 /** A first-order detector at a node; its lag in s. */
@@ -64,8 +68,8 @@ export function cellSystem(plant: Plant, entry: Entry, detectors: readonly Detec
   for (let i = 0; i < size; i++) if (part[i] === Part.Cell) place[i] = states++;
   const cells = states;
   states += detectors.length;
-  const joints = jointsInOrder(plant);
-  if (!joints || !isCellsOnly(plant)) throw new RangeError("a network of stirred cells and junctions alone is wanted");
+  const joints = hasCellsOnly(plant) ? jointsInOrder(plant) : undefined;
+  if (!joints) throw new RangeError("a network of stirred cells and junctions alone is wanted");
   joints.forEach((node, j) => {
     place[node] = states + j;
   });

@@ -12,7 +12,7 @@ export interface CellsResponse {
   /**
    * Of coefficients that the series gave, times what they multiply: the concentration at one of the places, or, under the
    * number after the last, all tracer that cells hold.
-   * @param scale a part of 1e-12 of this does not count
+   * @param scale a part of 1e-11 of this does not count
    */
   sum(look: number, c: Float64Array, scale: number): number;
   /** Why it is not good, where it is not. */

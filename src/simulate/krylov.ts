@@ -7,9 +7,9 @@ import type { TracerWay, WatchTracing } from "./tracing.js";
 /** The shift, in units of one over the last time: larger ones are solved faster, smaller ones take fewer vectors. */
 const shiftTimesSpan = 200;
 /** Vectors at first, how many more at a time, and at most. */
-const [first, more, most] = [30, 10, 160];
-/** A curve that more vectors change less than this, beside its peak, stays. */
-const settled = 1e-11;
+const [first, more, most] = [40, 10, 160];
+/** A curve that ten vectors more change less than this, beside its peak, is by then some tens of times nearer. */
+const settled = 3e-10;
 
 /**
  * Cells and joints alone, however far apart their rates: a few dozen solves with one shifted matrix make a small dense picture

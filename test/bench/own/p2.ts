@@ -7,7 +7,7 @@ export function p2([folder, out]: string[]): Record<string, unknown> {
   const { plant, seconds } = latticePlant(folder);
   const tau = plant.volume.active / plant.feeds[0].flow;
   const times = Float64Array.from({ length: 200 }, (_, k) => (3 * tau * k) / 199);
-  const { first, again, result } = repeated(() => tracerResponse(plant, { at: "feed", form: "pulse" }, times));
+  const { first, again, result } = repeated(() => tracerResponse(plant, { at: "feed", form: "pulse" }, times), 6);
   const { value } = result.readings[0];
   let text = "t_min,E_per_min\n";
   for (let k = 0; k < times.length; k++) text += `${times[k] / 60},${value[k] * 60}\n`;
