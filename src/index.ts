@@ -29,8 +29,16 @@ export { printProblems } from "./problems/print.js";
 export type { Problem } from "./problems/problem.js";
 export { type SteadyState, steadyState } from "./reaction/steady.js";
 export { meanAges, meanLives } from "./simulate/ages.js";
+export { exact } from "./simulate/exact.js";
+export { laplace } from "./simulate/laplace.js";
 export { ode } from "./simulate/ode.js";
-export { tracerResponse } from "./simulate/tracer.js";
+export {
+  type TracerOptions,
+  type TracerReading,
+  type TracerResult,
+  tracerResponse,
+  type UnitInjection,
+} from "./simulate/tracer.js";
 export { transferFunction } from "./transfer/transfer-function.js";
 
 /**
