@@ -30,5 +30,10 @@ export function manualOf(root: string): string {
     duty: read(duty),
     study: read(study),
   };
-  return manual({ documents, broken });
+  const pages = "shared/reference/measured";
+  const measured = readdirSync(join(root, pages))
+    .filter((file) => file.endsWith(".md"))
+    .sort()
+    .map((file) => read(`${pages}/${file}`).trim());
+  return manual({ documents, broken, measured });
 }

@@ -15,6 +15,8 @@ import { onlyFlow, recoveryOf, tauOf, whyNoRecovery } from "./recovery.js";
 import { momentsOf } from "./response.js";
 import { type MomentsOptions, type MomentsResult, noiseFigure, nothing, type ReadingMoments } from "./result.js";
 import { seenResponse } from "./seen.js";
+import { shapeOf } from "./shape.js";
+import { judgeShape } from "./shape-rules.js";
 
 export type { MomentsOptions, MomentsResult, ReadingMoments } from "./result.js";
 
@@ -126,6 +128,18 @@ export function readCurve(
   else if (!tau)
     notSupported.push(`holdback, segregation and dead volume at '${curve.at}': the volume or the flow is not known`);
   else findings.push(...judgeMean(curve.at, meanFigure, tau, time, Math.abs(found.tail.area)));
+  // A tail that noise leaves open by a little says nothing against the shape of the rest.
+  const { tail } = response;
+  const nearlyClosed = tail.is === "open" && tail.level < 0.03 * response.value.reduce((m, c) => Math.max(m, c), 0);
+  const shape =
+    inlet || !(known || nearlyClosed)
+      ? undefined
+      : shapeOf(curve, response, F, found.mean, variance / mean ** 2, found.area);
+  if (shape) {
+    const judged = judgeShape(shape, time);
+    findings.push(...judged.findings);
+    notSupported.push(...judged.not);
+  }
   const steps = [...curve.steps];
   if (inlet) takeOff(steps, "measured inlet", inlet.mean, inlet.variance);
   const last = steps[steps.length - 1];

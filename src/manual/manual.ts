@@ -11,6 +11,8 @@ export interface ManualInputs {
   /** A whole document of each kind, as it is shipped. */
   readonly documents: Readonly<Record<DocumentKind, string>>;
   readonly broken: readonly Broken[];
+  /** Pages of what was measured on curves with known truth, each under a heading of its own. */
+  readonly measured: readonly string[];
 }
 
 const about: Readonly<Record<DocumentKind, string>> = {
@@ -23,9 +25,9 @@ const about: Readonly<Record<DocumentKind, string>> = {
 };
 
 /** The reference manual, in Markdown, from the same declarations that the program checks documents with. */
-export function manual({ documents, broken }: ManualInputs): string {
+export function manual({ documents, broken, measured }: ManualInputs): string {
   const shapes = documentShapes(kinds);
-  const headings = ["Values, units, names", ...documentKinds.map(titleOf), "Problems"];
+  const headings = ["Values, units, names", ...documentKinds.map(titleOf), "Problems", "Measured"];
   return `${parts(
     "# The backmix language: reference",
     "Written by the build from the declarations that the program itself checks with; do not edit.",
@@ -40,6 +42,9 @@ export function manual({ documents, broken }: ManualInputs): string {
     ),
     "## Problems",
     problemsSection(broken),
+    "## Measured",
+    "What findings and figures are worth, measured on simulated tests whose truth is known; made by tests, which fail where these pages are stale.",
+    ...measured,
   )}\n`;
 }
 

@@ -1,4 +1,5 @@
-import { type MomentsOptions, readMoments } from "../../src/data/moments.js";
+import { type MomentsOptions, type MomentsResult, readMoments } from "../../src/data/moments.js";
+import { shapeCodes } from "../../src/data/shape-rules.js";
 import { parseTrial } from "../../src/parse/trial.js";
 
 /** A trial around a table: min and g/L, a pulse of 10 g at 10 L/min unless said otherwise. */
@@ -36,7 +37,12 @@ export function readingOf(
   const { document, problems } = trialOf(points, change);
   if (!document) throw new Error(problems.map((p) => `${p.code}: ${p.message}`).join("\n"));
   const result = readMoments(document, options);
-  return { ...result.readings[0], ...result, codes: result.findings.map((f) => f.code) };
+  return { ...result.readings[0], ...result, codes: codesOf(result) };
+}
+
+/** Codes of what a result says of the data; shapes that it sees have tests of their own. */
+export function codesOf({ findings }: MomentsResult): string[] {
+  return findings.map((f) => f.code).filter((code) => !shapeCodes.has(code));
 }
 
 /** Points of a function at equal steps from 0. */

@@ -1,9 +1,10 @@
 import { describe, expect, test } from "vitest";
 import { readMoments } from "../../src/data/moments.js";
+import { shapeCodes } from "../../src/data/shape-rules.js";
 import { parseNetwork } from "../../src/parse/network.js";
 import { parseTrial } from "../../src/parse/trial.js";
 import { vesselFacts } from "../../src/study/trial-facts.js";
-import { sampled } from "./helpers.js";
+import { codesOf, sampled } from "./helpers.js";
 
 const network = (feeds: string, to: string, outlets: string) => {
   const text = `network: Tank
@@ -35,7 +36,12 @@ ${places.map((at) => `  - {at: ${at}, file: log.csv, time: {column: t, unit: min
   const { document, problems } = parseTrial(text, { path: "trial.yaml", read: () => csv });
   if (!document) throw new Error(problems.map((p) => p.message).join("\n"));
   const result = readMoments(document, vesselFacts(of, document));
-  return { ...result, codes: result.findings.map((f) => f.code), first: result.readings[0] };
+  return {
+    ...result,
+    codes: codesOf(result),
+    first: result.readings[0],
+    findings: result.findings.filter((f) => !shapeCodes.has(f.code)),
+  };
 }
 
 describe("several outlets", () => {
