@@ -8,6 +8,10 @@ import { sameKind } from "./same-kind.js";
 
 /** Does a duty fit a network: are its feeds, places and constants there, and does it say what every feed brings? */
 export function checkDuty(network: Network, duty: Duty, report: Report): void {
+  if (network.basis === "mass") {
+    report("not-yet", duty.at, { what: "a duty on a network with `basis: mass`" });
+    return;
+  }
   if (isClosed(network)) {
     report("not-yet", duty.at, { what: `a duty in a closed vessel, which is a batch,` });
     return;

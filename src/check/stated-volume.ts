@@ -1,5 +1,6 @@
 import type { Network } from "../model/network.js";
 import type { Value } from "../model/value.js";
+import { inBasis } from "../units/basis.js";
 import { dimensions, sameDimension } from "../units/dimension.js";
 import type { Rule } from "./rule.js";
 
@@ -30,7 +31,10 @@ function statement(network: Network): { value: Value; within: number } | undefin
   const check = network.checks.find((c) => c.what === "volume" && c.of === "all");
   if (check) return { value: check.equals, within: check.within };
   const constant = network.names.find(
-    (n) => n.role === "constant" && vesselNames.has(n.name) && sameDimension(n.value.dimension, dimensions.volume),
+    (n) =>
+      n.role === "constant" &&
+      vesselNames.has(n.name) &&
+      sameDimension(n.value.dimension, inBasis(dimensions.volume, network.basis)),
   );
   return constant && network.compartments.length > 0 ? { value: constant.value, within: usualWithin } : undefined;
 }

@@ -5,8 +5,9 @@ import type { Value } from "../model/value.js";
 import type { Report } from "../problems/report.js";
 import { lateValues } from "../resolve/trial-on.js";
 import { nearest } from "../text/nearest.js";
+import { type Basis, concentrationOf, dosedInto, inBasis, isLevel } from "../units/basis.js";
 import { siUnit } from "../units/describe.js";
-import { type Dimension, dimensions, isRatio, over, sameDimension } from "../units/dimension.js";
+import { type Dimension, dimensions, isRatio, sameDimension } from "../units/dimension.js";
 import { followsKnown } from "./follows.js";
 import { isCell, placeNames } from "./places.js";
 import { sameKind } from "./same-kind.js";
@@ -21,8 +22,9 @@ export function checkTrial(network: Network | undefined, trial: Trial, report: R
   for (const { level, at } of trial.contents?.levels ?? []) {
     for (const reading of trial.readings) if (!checkLevel(level, at, reading, report)) break;
   }
+  const bases = network ? [network.basis] : (["volume", "mass"] as const);
   for (const injection of trial.injections) {
-    for (const reading of trial.readings) if (!checkAmount(injection, reading, report)) break;
+    for (const reading of trial.readings) if (!checkAmount(injection, reading, bases, report)) break;
   }
 }
 
@@ -39,7 +41,8 @@ function checkPlaces(network: Network, trial: Trial, report: Report): void {
   if (trial.tracer?.follows) followsKnown(network, trial.tracer.follows, report);
   const closed = isClosed(network);
   for (const { at, where, form } of trial.injections) {
-    const dosed = form.is === "pulse" || (form.is === "step" && !form.from && form.level.dimension[0] !== -3);
+    const dosed =
+      form.is === "pulse" || (form.is === "step" && !form.from && !isLevel(form.level.dimension, network.basis));
     if (closed && !dosed) report("closed-inlet", where, { at });
   }
   for (const { of, at } of trial.contents?.levels ?? []) checkHolds(network, of, at, look, report);
@@ -53,7 +56,10 @@ function checkPlaces(network: Network, trial: Trial, report: Report): void {
     if (!known.includes(factor.name))
       report("retained-unknown", factor.at, { name: factor.name, nearest: nearest(factor.name, known), known });
   }
-  for (const [name, value] of trial.flows) look(name, value.at, "feed", feeds);
+  for (const [name, value] of trial.flows) {
+    look(name, value.at, "feed", feeds);
+    if (feeds.includes(name)) sameKind(inBasis(dimensions.flow, network.basis), value, report);
+  }
   for (const [name, { at }] of trial.late ?? []) look(name, at, "constant", constants);
   for (const [name, value] of [...trial.with, ...lateValues(network, trial, report)]) {
     if (!trial.late?.has(name)) look(name, value.at, "constant", constants);
@@ -86,20 +92,27 @@ function checkLevel(level: Value, at: Parameters<Report>[1], reading: Reading, r
 }
 
 /** Does what is put in make the kind of concentration that is read? True where it does. */
-function checkAmount({ form, at, where }: Injection, reading: Reading, report: Report): boolean {
+function checkAmount(
+  { form, at, where }: Injection,
+  reading: Reading,
+  bases: readonly Basis[],
+  report: Report,
+): boolean {
   if (reading.scale === "free") return true;
   const read = reading.unit.dimension;
   const written = form.is === "pulse" ? form.amount : form.is === "step" ? form.level : undefined;
   const given: Dimension = written?.dimension ?? (form.is === "signal" ? form.table.valueUnit.dimension : read);
-  const makes = form.is === "pulse" ? over(given, dimensions.volume) : given;
-  const dosed = form.is === "step" ? over(given, dimensions.flow) : undefined;
-  if (sameDimension(makes, read) || (dosed && sameDimension(dosed, read))) return true;
+  const makesIn = (basis: Basis): Dimension => (form.is === "pulse" ? concentrationOf(given, basis) : given);
+  const right = bases.some(
+    (b) => sameDimension(makesIn(b), read) || (form.is === "step" && sameDimension(dosedInto(given, b), read)),
+  );
+  if (right) return true;
   const name = written?.unit?.name ?? (form.is === "signal" ? form.table.valueUnit.name : "");
   report("amount-mismatch", written?.at ?? where, {
     at: reading.at,
     amount: name || `the unit of '${at}'`,
     reading: isRatio(read) ? reading.unit.name || "a bare number" : reading.unit.name,
-    wanted: siUnit(makes),
+    wanted: siUnit(makesIn(bases[0])) || "kg/kg",
   });
   return false;
 }

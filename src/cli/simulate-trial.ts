@@ -7,6 +7,7 @@ import { isClosed, type Network } from "../model/network.js";
 import type { Trial } from "../model/trial.js";
 import { parseTrial } from "../parse/trial.js";
 import { collector } from "../problems/report.js";
+import { plannedIn } from "../resolve/planned.js";
 import { moments } from "../simulate/moments.js";
 import { settlingTime } from "../simulate/tracer.js";
 import { trialResponse } from "../simulate/trial.js";
@@ -32,7 +33,7 @@ import { type TrialSpike, trialSpikes } from "./trial-spikes.js";
 export function simulateTrial(network: Network, options: SimulateOptions, { inputs, io }: Context): Outcome {
   if (options.follows) throw new UsageError("--follows is for --pulse and --step; a trial says itself what it follows");
   if (options.at) throw new UsageError("--at is for --pulse and --step; a trial says itself where it reads");
-  const trial = inputs.document(options.trial ?? "", parseTrial);
+  const trial = plannedIn(inputs.document(options.trial ?? "", parseTrial), network.basis);
   const { report, problems } = collector();
   checkTrial(network, trial, report);
   inputs.accept(problems);

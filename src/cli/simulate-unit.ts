@@ -113,7 +113,8 @@ export function simulateUnit(network: Network, options: SimulateOptions, { io }:
 }
 
 /** Why a closed vessel has no table of moments. */
-const noMean = "  closed: nothing leaves, so there is no mean time; values are c V / amount, 1 where all is mixed";
+const noMean =
+  "  closed: nothing leaves, so there is no mean time; values are concentration times all that is held over the amount, 1 where all is mixed";
 
 type Result = ReturnType<typeof tracerResponse>;
 

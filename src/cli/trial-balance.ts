@@ -5,6 +5,7 @@ import type { Balance } from "../simulate/respond.js";
 import type { AnyEngine } from "../simulate/trace.js";
 import { tracerPlant } from "../simulate/tracer-plant.js";
 import { trialTracing } from "../simulate/trial-tracing.js";
+import { inBasis, isLevel } from "../units/basis.js";
 import { dimensionName, dimensions, times } from "../units/dimension.js";
 import type { Unit } from "../units/unit.js";
 
@@ -41,6 +42,7 @@ export function trialBalance(
 function amountUnit(plant: Plant, { injections, contents }: Trial): Unit | undefined {
   const form = injections[0]?.form;
   if (form?.is === "pulse" && form.amount.unit) return form.amount.unit;
+  const { basis } = plant.network;
   const level =
     form?.is === "step"
       ? form.level.dimension
@@ -48,6 +50,8 @@ function amountUnit(plant: Plant, { injections, contents }: Trial): Unit | undef
         ? form.table.valueUnit.dimension
         : contents?.levels[0]?.level.dimension;
   if (!level) return undefined;
-  const amount = level[0] === -3 ? times(level, dimensions.volume) : times(level, dimensions.time);
+  const amount = isLevel(level, basis)
+    ? times(level, inBasis(dimensions.volume, basis))
+    : times(level, dimensions.time);
   return dimensionName(amount) === undefined ? undefined : plant.network.units.unitFor(amount);
 }

@@ -1,4 +1,5 @@
 import type { Reading, Trial } from "../model/trial.js";
+import { type Basis, basisOfFlow, inBasis } from "../units/basis.js";
 import { dimensions, sameDimension } from "../units/dimension.js";
 import { isUnitFault, parseUnit } from "../units/parse.js";
 import { one, type Unit } from "../units/unit.js";
@@ -72,11 +73,12 @@ export function readCurve(
   const flow = mixed ? undefined : (options.flowAt?.(reading.at) ?? onlyFlow(trial));
   const whole = options.throughflow ?? flow;
   const rule = options.rule ?? "trapezoid";
+  const basis = basisOf(trial, options);
   const stop =
     (trial.injections.length > 1
       ? finding("several-injections", curve.at, `${trial.injections.length} injections`)
       : undefined) ?? hopeless(curve);
-  const seen = stop ?? seenResponse(injection, reading, curve, whole, rule, dilutionOf(injection.at, options));
+  const seen = stop ?? seenResponse(injection, reading, curve, whole, rule, dilutionOf(injection.at, options), basis);
   const found = "code" in seen ? seen : (momentsOf(seen.response) ?? finding("no-area", curve.at, "area of 0 or less"));
   if ("code" in seen || "code" in found) {
     findings.push("code" in found ? found : (seen as Finding));
@@ -106,7 +108,7 @@ export function readCurve(
   const alone = !way || (way.isOutlet && way.others.length === 0);
   const unseen = way?.others.filter((name) => !trial.readings.some((r) => r.at === name)) ?? [];
   const expected = alone || injection.form.is === "step" || !way?.isOutlet ? undefined : way.share;
-  const recovery = recoveryOf(injection, reading, curve, found, flow, recovered, inlet, errors.area);
+  const recovery = recoveryOf(injection, reading, curve, found, flow, recovered, inlet, errors.area, basis);
   // Outlets that were all read are judged together.
   if (expected === undefined || unseen.length > 0)
     findings.push(...judgeRecovery(curve.at, recovery, expected, expected === undefined ? [] : unseen));
@@ -217,12 +219,20 @@ function effectiveVolume(flow: Known, mean: number | undefined, meanError: numbe
   return figure(flow.value * mean, unit, Math.hypot(flow.value * meanError, (flow.sd ?? 0) * mean));
 }
 
+/** What flows count: as the vessel has it; else as the day's flow is written. */
+function basisOf(trial: Trial, { volumeUnit }: MomentsOptions): Basis {
+  if (volumeUnit) return sameDimension(volumeUnit.dimension, dimensions.mass) ? "mass" : "volume";
+  const [flow] = [...trial.flows.values()];
+  return flow ? basisOfFlow(flow.dimension) : "volume";
+}
+
 /** The unit asked for; else that of the day's flow, whose name begins with it; else the liter. */
-function volumeUnitOf(trial: Trial, { volumeUnit }: MomentsOptions): Unit {
-  if (volumeUnit) return volumeUnit;
+function volumeUnitOf(trial: Trial, options: MomentsOptions): Unit {
+  if (options.volumeUnit) return options.volumeUnit;
   const [flow] = [...trial.flows.values()];
   const found = parseUnit(flow?.unit?.name.split("/")[0] ?? "L");
-  return !isUnitFault(found) && sameDimension(found.dimension, dimensions.volume) ? found : liter;
+  const held = inBasis(dimensions.volume, basisOf(trial, options));
+  return !isUnitFault(found) && sameDimension(found.dimension, held) ? found : liter;
 }
 
 const liter: Unit = { name: "L", factor: 1e-3, offset: 0, dimension: dimensions.volume };

@@ -1,5 +1,6 @@
 import type { Injection, Reading, Trial } from "../model/trial.js";
-import { dimensions, over, sameDimension } from "../units/dimension.js";
+import { type Basis, concentrationOf } from "../units/basis.js";
+import { sameDimension } from "../units/dimension.js";
 import { one } from "../units/unit.js";
 import type { CleanCurve } from "./clean.js";
 import { type Figure, figure, type Known } from "./figure.js";
@@ -15,13 +16,14 @@ export function recoveryOf(
   recovered: number | undefined,
   inlet: RawMoments | undefined,
   areaError: number,
+  basis: Basis,
 ): Figure {
   if (form.is === "step") return figure(recovered, one);
   if (reading.scale === "free") return figure(undefined, one);
   if (inlet) return figure(found.area / inlet.area, one, areaError / inlet.area);
   if (form.is !== "pulse" || !flow) return figure(undefined, one);
   const dose = form.amount.of([]);
-  if (!sameDimension(over(form.amount.dimension, dimensions.volume), curve.unit.dimension))
+  if (!sameDimension(concentrationOf(form.amount.dimension, basis), curve.unit.dimension))
     return figure(undefined, one);
   const recovery = (flow.value * found.area) / dose;
   const relative = Math.hypot((flow.sd ?? 0) / flow.value, (form.amount.sd?.([]) ?? 0) / dose);

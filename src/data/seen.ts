@@ -1,5 +1,6 @@
 import type { Injection, Reading } from "../model/trial.js";
-import { dimensions, over, sameDimension } from "../units/dimension.js";
+import { type Basis, dosedInto } from "../units/basis.js";
+import { sameDimension } from "../units/dimension.js";
 import { formatNumber } from "../units/format.js";
 import type { CleanCurve } from "./clean.js";
 import type { Known } from "./figure.js";
@@ -20,6 +21,7 @@ export function seenResponse(
   flow: Known | undefined,
   rule: Rule,
   dilution = 1,
+  basis: Basis = "volume",
 ): { response: Response; recovered: number | undefined } | Finding {
   if (form.is !== "step") return { response: pulseResponse(curve, rule), recovered: undefined };
   const n = curve.value.length;
@@ -33,7 +35,7 @@ export function seenResponse(
       : before;
   const level = form.level.of([]);
   const isLevel = sameDimension(form.level.dimension, curve.unit.dimension);
-  const isRate = flow && sameDimension(over(form.level.dimension, dimensions.flow), curve.unit.dimension);
+  const isRate = flow && sameDimension(dosedInto(form.level.dimension, basis), curve.unit.dimension);
   const to = !trusted ? undefined : isLevel ? dilution * level : isRate ? level / flow.value : undefined;
   const noise = roughness(curve.time, curve.value);
   const rise = Math.abs(plateau - from);

@@ -31,7 +31,7 @@ export function innerVolume(plant: Plant, node: PlantNode): string {
     : symbol;
 }
 
-const flowing = new Set([dimensions.flow, dimensions.ratio].map(dimensionKey));
+const flowing = new Set([dimensions.flow, dimensions["mass rate"], dimensions.ratio].map(dimensionKey));
 
 const shared = (symbol: string, count: number): string => (count > 1 ? `${symbol} / ${count}` : symbol);
 

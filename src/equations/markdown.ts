@@ -2,6 +2,7 @@ import type { Plant } from "../compile/plant.js";
 import { partingsOf } from "../compile/sends.js";
 import { isClosed } from "../model/network.js";
 import type { Value } from "../model/value.js";
+import { holdUp } from "../units/basis.js";
 import { dimensions } from "../units/dimension.js";
 import { formatNumber, formatQuantity } from "../units/format.js";
 import { differenceInUnit, inUnit } from "../units/unit.js";
@@ -18,7 +19,7 @@ export function equationsMarkdown(plant: Plant, balances: readonly Balance[] = b
   const of = (is: Balance["is"]): Balance[] => balances.filter((b) => b.is === is);
   return [
     `# ${inText(network.title)}`,
-    `The balances of \`${network.path}\` as compiled, for one substance that neither reacts nor sticks. \`L12\` is line 12 of that file. $c$ is the concentration at the outflow of a place, $V$ a volume, $Q$ a flow (of a place: all that its streams bring, exchange left out)${isClosed(network) ? "." : "; those of the feeds are given."}`,
+    `The balances of \`${network.path}\` as compiled, for one substance that neither reacts nor sticks. \`L12\` is line 12 of that file. $c$ is the concentration at the outflow of a place, $V$ a ${holdUp(network.basis)}, $Q$ a flow (of a place: all that its streams bring, exchange left out)${isClosed(network) ? "." : "; those of the feeds are given."}`,
     ...section("Names", namesTable(plant)),
     ...section("Flows", flowsTable(plant)),
     ...section("Bodies", bodiesTable(plant)),

@@ -1,6 +1,7 @@
 import type { CompartmentKind } from "../compartments/kind.js";
 import type { ZoneTable } from "../compartments/zone-table.js";
 import type { Span } from "../text/source.js";
+import type { Basis } from "../units/basis.js";
 import type { Unit } from "../units/unit.js";
 import type { Value } from "./value.js";
 
@@ -10,6 +11,8 @@ export interface Network {
   readonly at: Span;
   readonly path: string;
   readonly notes: string | undefined;
+  /** What volumes and flows count: with `mass` all m3 are kg. */
+  readonly basis: Basis;
   /** Constants, parameters and `feed.flow`s: the names that values may use. One slot each in an Env. */
   readonly names: readonly Named[];
   /** Slots in an order in which each depends on earlier ones only. */

@@ -5,6 +5,7 @@ import { collector } from "../problems/report.js";
 import { openText } from "../read/open.js";
 import { checkShape, documentKind } from "../read/shape.js";
 import { child, type MapNode } from "../read/tree.js";
+import { plannedIn } from "../resolve/planned.js";
 import type { DocumentKind } from "../schema/shape.js";
 import { parseChemistry } from "./chemistry.js";
 import { parseDuty } from "./duty.js";
@@ -60,7 +61,7 @@ function vesselOf(trial: Trial, options: ParseOptions): Problem[] {
   if (content === undefined) return problems;
   const parsed = parseNetwork(content, { ...options, path: trial.vessel });
   if (!parsed.document) return parsed.problems;
-  checkTrial(parsed.document, trial, report);
+  checkTrial(parsed.document, plannedIn(trial, parsed.document.basis), report);
   return problems;
 }
 

@@ -31,7 +31,7 @@ export function resolveCompartment(
   if (!kind) return unknownBody(name, at, node);
   const keys = resolveKeys(kind.keys, node, at, scope, report);
   const tolerance = keys.values.tolerance?.of(env) ?? defaultTolerance;
-  const zones = kind.zoned && resolveZones(name, at, node, tolerance, files, report);
+  const zones = kind.zoned && resolveZones(name, at, node, tolerance, scope.basis ?? "volume", files, report);
   if (kind.zoned && !zones) return unknownBody(name, at, node);
   const streams = kind.zoned ? [] : resolveStreams(child(node, "to"), scope, report);
   const sent = kind.sends ? resolveSends(name, child(node, "sends"), streams, scope, report) : { streams };

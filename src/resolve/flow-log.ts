@@ -16,7 +16,7 @@ const longPart = 0.02;
 
 /** A flow that a table logs, m3/s. Undefined where something is wrong; reported. */
 export function resolveFlowLog(feed: string, node: MapNode, files: Files, report: Report): ResolvedTable | undefined {
-  const unit = resolveUnit(child(child(node, "value"), "unit"), dimensions.flow, report);
+  const unit = resolveUnit(child(child(node, "value"), "unit"), [dimensions.flow, dimensions["mass rate"]], report);
   if (!unit && child(child(node, "value"), "unit")) return undefined;
   const table = resolveTable(node, false, files, report);
   if (!table) return undefined;
@@ -48,5 +48,5 @@ export function meanFlow({ time, value, valueUnit }: Series, at: Span): Value {
   for (let i = 0; i + 1 < time.length; i++) sum += ((value[i] + value[i + 1]) / 2) * (time[i + 1] - time[i]);
   const mean = sum / (time[time.length - 1] - time[0]);
   const expression = { type: "number" as const, value: mean, unit: valueUnit, at: { from: 0, to: 0 } };
-  return { at, dimension: dimensions.flow, unit: valueUnit, expression, uses: [], of: () => mean, sd: undefined };
+  return { at, dimension: valueUnit.dimension, unit: valueUnit, expression, uses: [], of: () => mean, sd: undefined };
 }

@@ -3,6 +3,7 @@ import type { Env, Value } from "../model/value.js";
 import { stronglyConnected } from "../numerics/graph.js";
 import { factor, solve } from "../numerics/lu.js";
 import type { Report } from "../problems/report.js";
+import { type Basis, inBasis } from "../units/basis.js";
 import { dimensions } from "../units/dimension.js";
 import type { Declared } from "./declare.js";
 import { dependencyOrder } from "./dependency-order.js";
@@ -30,6 +31,7 @@ export function inflowsOf(
   places: Places,
   slots: ReadonlyMap<string, number>,
   needs: readonly (readonly number[])[],
+  basis: Basis,
   report: Report,
 ): Inflows {
   if (wanted.length === 0) return { names: [], order: dependencyOrder(needs).order };
@@ -40,7 +42,7 @@ export function inflowsOf(
     const { uses, of } = arrivingAt(inlet, ways);
     const slot = slots.get(d.name) as number;
     all[slot] = uses.flatMap((name) => slots.get(name) ?? []);
-    return { name: d.name, slot, role: "inflow", at: d.at, value: flowValue(d, uses, of), ...unbounded };
+    return { name: d.name, slot, role: "inflow", at: d.at, value: flowValue(d, uses, of, basis), ...unbounded };
   });
   const { order, circles } = dependencyOrder(all);
   const nameOf = new Map([...slots].map(([name, slot]) => [slot, name]));
@@ -56,9 +58,9 @@ export function inflowsOf(
 
 const unbounded = { between: undefined, spacing: "linear", about: undefined } as const;
 
-const flowValue = ({ at, name }: Declared, uses: readonly string[], of: (env: Env) => number): Value => ({
+const flowValue = ({ at, name }: Declared, uses: readonly string[], of: (env: Env) => number, basis: Basis): Value => ({
   at,
-  dimension: dimensions.flow,
+  dimension: inBasis(dimensions.flow, basis),
   unit: undefined,
   expression: { type: "name", name, at: { from: 0, to: name.length } },
   uses,

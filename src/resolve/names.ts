@@ -2,6 +2,7 @@ import type { Named } from "../model/network.js";
 import type { Value } from "../model/value.js";
 import { collector, type Report } from "../problems/report.js";
 import { child, textOf } from "../read/tree.js";
+import { type Basis, inBasis } from "../units/basis.js";
 import { type Dimension, type DimensionName, dimensions, sameDimension } from "../units/dimension.js";
 import { type Declared, declareNames } from "./declare.js";
 import { dependencyOrder } from "./dependency-order.js";
@@ -23,15 +24,16 @@ export interface ResolvedNames {
 }
 
 /** Constants, parameters and flows of feeds, of a document and of all its parts. Broken ones are reported and unknown. */
-export function resolveNames(instances: readonly Instance[], report: Report): ResolvedNames {
+export function resolveNames(instances: readonly Instance[], report: Report, basis: Basis = "volume"): ResolvedNames {
   const { declared, slots } = shareNames(declareNames(instances, report));
   const found = new Map<number, Dimension>();
   declared.forEach((d, slot) => {
-    if (d.role === "inflow") found.set(slot, dimensions.flow);
+    if (d.role === "inflow") found.set(slot, inBasis(dimensions.flow, basis));
   });
   const values = new Map<number, Value>();
   const wholeName = (name: string): string => declared[slots.get(name) ?? -1]?.name ?? name;
   const scope = (prefix: string): Scope => ({
+    basis,
     slot: (name) => slots.get(prefix + name),
     dimension: (name) => found.get(slots.get(prefix + name) ?? -1),
     unit: (name) => values.get(slots.get(prefix + name) ?? -1)?.unit,

@@ -8,7 +8,7 @@ import { dependencyOrder } from "./dependency-order.js";
 import { inflowsOf } from "./inflow.js";
 import { type LocalNetwork, resolveLocal } from "./local.js";
 import { resolveNames } from "./names.js";
-import { allInstances, type Instance, openParts } from "./part.js";
+import { allInstances, basisOf, type Instance, openParts } from "./part.js";
 import { placeAll } from "./place.js";
 import { resolveRequirements } from "./requirements.js";
 import { unitBook } from "./unit-book.js";
@@ -20,8 +20,9 @@ import { unitBook } from "./unit-book.js";
  */
 export function resolveNetwork(tree: MapNode, path: string, report: Report, files: Files = noFiles): Network {
   const root = openParts(tree, files, report);
+  const basis = basisOf(tree);
   const instances = allInstances(root);
-  const { names: declared, inflows, needs, slots, scope } = resolveNames(instances, report);
+  const { names: declared, inflows, needs, slots, scope } = resolveNames(instances, report, basis);
   const env = valuesOfNames(declared, dependencyOrder(needs).order);
   const locals = new Map<Instance, LocalNetwork>();
   for (const instance of instances) {
@@ -45,7 +46,7 @@ export function resolveNetwork(tree: MapNode, path: string, report: Report, file
     ...checkNames,
   ]);
   const wanted = inflows.filter((d) => used.has(d.name));
-  const found = inflowsOf(wanted, { feeds, compartments, groups }, slots, needs, report);
+  const found = inflowsOf(wanted, { feeds, compartments, groups }, slots, needs, basis, report);
   const names = [...declared, ...found.names];
   const known = new Set(names.map((n) => n.slot));
   return {
@@ -53,6 +54,7 @@ export function resolveNetwork(tree: MapNode, path: string, report: Report, file
     at: child(tree, "network")?.at ?? tree.at,
     path,
     notes: textOf(tree, "notes"),
+    basis,
     names,
     order: found.order.filter((slot) => known.has(slot)),
     feeds,
@@ -62,7 +64,7 @@ export function resolveNetwork(tree: MapNode, path: string, report: Report, file
     requires: requires.flatMap((r) => r.requires),
     checks,
     used,
-    units: unitBook([...values, ...compartments.flatMap((c) => c.zones?.units ?? [])], feeds[0]?.flow),
+    units: unitBook([...values, ...compartments.flatMap((c) => c.zones?.units ?? [])], feeds[0]?.flow, basis),
   };
 }
 

@@ -5,6 +5,7 @@ import { beside } from "../read/paths.js";
 import { checkShape } from "../read/shape.js";
 import { child, entriesOf, itemsOf, type MapNode, type ScalarNode, type Tree, textOf } from "../read/tree.js";
 import type { Span } from "../text/source.js";
+import type { Basis } from "../units/basis.js";
 import { wholeDocument } from "./based-on.js";
 import { openNamed } from "./named-file.js";
 
@@ -68,6 +69,9 @@ export function openParts(tree: MapNode, files: Files, report: Report): Instance
   return { ...root, parts: new Map() };
 }
 
+/** What a document counts in. */
+export const basisOf = (tree: MapNode): Basis => (textOf(tree, "basis") === "mass" ? "mass" : "volume");
+
 /** Counts a part that is about to be opened; false where that is one too many. */
 function mayOpen(use: ScalarNode, opened: Opened): boolean {
   opened.files.add(beside(use.at.source.path, use.text));
@@ -94,6 +98,11 @@ function open(
     const change = whole.entries.find((e) => e.key.text === "change");
     if (change) {
       report("change-only", change.key.at, { title: textOf(whole, "network") ?? "" });
+      continue;
+    }
+    const [own, inside] = [basisOf(tree), basisOf(whole)];
+    if (own !== inside) {
+      report("part-basis", use.at, { title: textOf(whole, "network") ?? "", own, inside });
       continue;
     }
     const bound = bindingsOf(node, names, key.text, bindings);

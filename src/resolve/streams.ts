@@ -1,6 +1,7 @@
 import type { Exchange, Stream } from "../model/network.js";
 import type { Report } from "../problems/report.js";
 import { entriesOf, type Tree } from "../read/tree.js";
+import { inBasis } from "../units/basis.js";
 import { dimensions } from "../units/dimension.js";
 import { unknownStream, unknownValue } from "./unknown.js";
 import { resolveValue, type Scope } from "./value.js";
@@ -30,7 +31,9 @@ export function resolveStreams(node: Tree | undefined, scope: Scope, report: Rep
 /** An `exchange:`: partner -> flow, equal both ways. */
 export function resolveExchanges(node: Tree | undefined, scope: Scope, report: Report): Exchange[] {
   return entriesOf(node).map(({ key, value }) => {
-    const flow = resolveValue(value, dimensions.flow, scope, report) ?? unknownValue(value.at, dimensions.flow);
+    const flow =
+      resolveValue(value, dimensions.flow, scope, report) ??
+      unknownValue(value.at, inBasis(dimensions.flow, scope.basis ?? "volume"));
     return { partner: key.text, at: key.at, flow };
   });
 }

@@ -7,6 +7,7 @@ import type { Report } from "../problems/report.js";
 import type { Files } from "../read/files.js";
 import { beside } from "../read/paths.js";
 import { child, entriesOf, itemsOf, type MapNode, type ScalarNode, type Tree, textOf } from "../read/tree.js";
+import { isLevel } from "../units/basis.js";
 import { type Dimension, dimensions } from "../units/dimension.js";
 import type { Unit } from "../units/unit.js";
 import { resolveContents } from "./contents.js";
@@ -17,7 +18,7 @@ import { aboveZero } from "./sign.js";
 import { resolveTracer } from "./tracer.js";
 import { type TrialClock, trialClock } from "./trial-clock.js";
 import { knownUnit, type ResolvedTable, resolveTable } from "./trial-table.js";
-import { emptyScope, resolveValue, type Scope } from "./value.js";
+import { emptyScope, resolveValue, type Scope, type Wanted } from "./value.js";
 
 /**
  * A trial document with its tables read, all on one clock, in SI.
@@ -59,7 +60,9 @@ export function resolveTrial(
   const contents = resolveContents(child(tree, "contents"), clock, free, report);
   const start = injections[0]?.start ?? contents?.begins ?? 0;
   const dose = injections[0]?.form.is === "pulse" ? injections[0].form.amount : undefined;
-  const planned = plannedUnit(dose, contents?.levels[0]?.level);
+  const first = injections[0]?.form;
+  const level = first?.is === "step" && isConcentration(first.level.dimension) ? first.level : undefined;
+  const planned = plannedUnit(dose, level ?? contents?.levels[0]?.level);
   if (injectionNodes.length === 0 && !child(tree, "contents")) report("nothing-put-in", title?.at ?? tree.at, {});
   const readings = readingNodes.map((node, i) => {
     const missing = child(node, "file") !== undefined && readTables[i] === undefined;
@@ -67,7 +70,7 @@ export function resolveTrial(
     const reading = resolveReading(node, own, clock, planned, files, report);
     return missing ? undefined : reading;
   });
-  const flows = values(child(tree, "flows"), dimensions.flow, scope, report);
+  const flows = values(child(tree, "flows"), [dimensions.flow, dimensions["mass rate"]], scope, report);
   const flowLogs = new Map<string, Series>();
   for (const { feed, at, log } of logTables) {
     const moved = onClock(log);
@@ -128,7 +131,7 @@ function settingsOf(
   return { settings, late };
 }
 
-function values(node: Tree | undefined, wanted: Dimension | "any", scope: Scope, report: Report): Map<string, Value> {
+function values(node: Tree | undefined, wanted: Wanted, scope: Scope, report: Report): Map<string, Value> {
   const found = new Map<string, Value>();
   for (const { key, value } of entriesOf(node)) {
     if (value.type === "map") continue; // a table: read with the others
@@ -159,9 +162,11 @@ function afterMidnight(table: ResolvedTable | undefined, start: number, clock: T
   return last < start - 43_200 ? moved(table, 86_400) : table;
 }
 
-/** The unit of concentration that a planned reading is in: that of the dose in a liter, or of the contents. */
-function plannedUnit(amount: Value | undefined, content: Value | undefined): Unit {
-  if (!amount && content?.unit) return content.unit;
+const isConcentration = (d: Dimension): boolean => isLevel(d, "volume") || isLevel(d, "mass");
+
+/** The unit of concentration that a planned reading is in: that of the dose in a liter, or of what enters or is inside. */
+function plannedUnit(amount: Value | undefined, level: Value | undefined): Unit {
+  if (!amount && level?.unit) return level.unit;
   const perLiter = amount?.unit && knownUnit(`${amount.unit.name}/L`);
   return perLiter ?? { name: "g/L", factor: 1, offset: 0, dimension: dimensions["mass concentration"] };
 }

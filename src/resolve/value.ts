@@ -10,12 +10,13 @@ import { cutOff } from "../read/lines.js";
 import type { ScalarNode, Tree } from "../read/tree.js";
 import { nearest } from "../text/nearest.js";
 import type { Span } from "../text/source.js";
+import type { Basis } from "../units/basis.js";
 import { nameDimension } from "../units/describe.js";
 import { type Dimension, dimensions, isRatio, sameDimension } from "../units/dimension.js";
 import { symbols } from "../units/table.js";
 import { one, type Unit } from "../units/unit.js";
 import { spanWithin } from "./span.js";
-import { describeWanted, exampleOf, fits, type Wanted } from "./wanted.js";
+import { describeWanted, exampleOf, fits, isWeighed, type Wanted, wantedIn } from "./wanted.js";
 
 export type { Wanted } from "./wanted.js";
 
@@ -28,6 +29,8 @@ export interface Scope {
   readonly scale?: (name: string) => Scale | undefined;
   /** The unit that a name's value is written in. */
   readonly unit?: (name: string) => Unit | undefined;
+  /** What volumes and flows count here; default: volume. */
+  readonly basis?: Basis;
   /** What a name is called from outside, where the document is a part of another: `core.tanks` for its own `tanks`. */
   readonly whole?: (name: string) => string;
 }
@@ -37,8 +40,9 @@ export const emptyScope: Scope = { slot: () => undefined, dimension: () => undef
 
 /** Reads a value, finds its names, checks its dimension and compiles it. Undefined once its problems are reported. */
 export function resolveValue(node: Tree | undefined, wanted: Wanted, scope: Scope, report: Report): Value | undefined {
-  const written = writtenValue(node, report, wanted);
-  return written && bindValue(node as ScalarNode, written, wanted, scope, report);
+  const own = wantedIn(wanted, scope.basis ?? "volume");
+  const written = writtenValue(node, report, own);
+  return written && bindValue(node as ScalarNode, written, own, scope, report);
 }
 
 /** The same for an absolute temperature: a difference of two will not do. */
@@ -85,7 +89,7 @@ export function bindValue(
   const dimension = dimensionOf(expression, scope);
   if (!dimension) return undefined;
   if (isFault(dimension)) return reportFault(node, dimension, report);
-  if (!fits(wanted, dimension)) return wrongDimension(node, expression, dimension, wanted, report);
+  if (!fits(wanted, dimension)) return wrongDimension(node, expression, dimension, wanted, report, scope.basis);
   const scale = scaleOf(expression, scope);
   if (typeof scale !== "string") return reportFault(node, scale, report);
   const fault = uncertainty && spreadFault(uncertainty, dimension);
@@ -163,21 +167,29 @@ function asMinus(name: string, scope: Scope): string | undefined {
   return undefined;
 }
 
-function wrongDimension(node: ScalarNode, e: Expression, got: Dimension, wanted: Wanted, report: Report): undefined {
+function wrongDimension(
+  node: ScalarNode,
+  e: Expression,
+  got: Dimension,
+  wanted: Wanted,
+  report: Report,
+  basis: Basis = "volume",
+): undefined {
   const at = spanWithin(node, 0, node.text.length);
   const literal = e.type === "negate" ? e.of : e;
   if (literal.type === "number" && literal.unit.name === "") {
-    const fixed = exampleOf(wanted).replace(/^\S+/, node.text.slice(0, e.at.to));
+    const fixed = exampleOf(wanted, basis).replace(/^\S+/, node.text.slice(0, e.at.to));
     const cut = cutOff(node.at)?.trim();
     const zero = literal.value === 0;
-    report("missing-unit", at, { text: node.text, wanted: describeWanted(wanted), fixed, zero, cut });
+    report("missing-unit", at, { text: node.text, wanted: describeWanted(wanted, basis), fixed, zero, cut });
   } else {
-    const example = exampleOf(wanted);
+    const example = exampleOf(wanted, basis);
     report("wrong-dimension", at, {
       text: node.text,
       got: nameDimension(got),
-      wanted: describeWanted(wanted),
+      wanted: describeWanted(wanted, basis),
       example,
+      weighed: basis === "volume" && isWeighed(got, wanted),
     });
   }
   return undefined;

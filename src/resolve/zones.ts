@@ -10,6 +10,7 @@ import { child, type MapNode, type Tree, textOf } from "../read/tree.js";
 import { openWideCsv, type WideCsv } from "../read/wide-csv.js";
 import { nearest } from "../text/nearest.js";
 import type { Span } from "../text/source.js";
+import { type Basis, inBasis } from "../units/basis.js";
 import { type Dimension, dimensions } from "../units/dimension.js";
 import type { Unit } from "../units/unit.js";
 import { column, csvOptions } from "./trial-table.js";
@@ -31,6 +32,7 @@ export function resolveZones(
   at: Span,
   node: MapNode,
   tolerance: number,
+  basis: Basis,
   files: Files,
   report: Report,
 ): ZoneTable | undefined {
@@ -44,8 +46,8 @@ export function resolveZones(
     const table = openColumns(spec, asked, files, report);
     return table && unit ? { table, unit } : undefined;
   };
-  const volumes = open("volumes", ["id", "volume"], "volume", dimensions.volume);
-  const flows = open("flows", ["from", "to", "flow"], "flow", dimensions.flow);
+  const volumes = open("volumes", ["id", "volume"], "volume", inBasis(dimensions.volume, basis));
+  const flows = open("flows", ["from", "to", "flow"], "flow", inBasis(dimensions.flow, basis));
   const cells = volumes && readCells(volumes.table, volumes.unit.factor, report);
   const rows = cells && flows && readFlows(flows.table, cells, flows.unit.factor, report);
   if (!rows) return undefined;

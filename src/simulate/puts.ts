@@ -3,6 +3,7 @@ import type { Contents, Injection, Trial } from "../model/trial.js";
 import { RefusedError } from "../problems/refused.js";
 import { problem } from "../problems/report.js";
 import type { Span } from "../text/source.js";
+import { isLevel } from "../units/basis.js";
 import type { Entry } from "./entry.js";
 import { constantRate, type Drive, instant } from "./linear-system.js";
 
@@ -47,8 +48,8 @@ export function driveOf(plant: Plant, injection: Injection, decay = 0): { drive:
   const node = plant.entry.get(injection.at) as number;
   const flow = plant.nodes[node].inflow;
   if (form.is === "step") {
-    // A level is a concentration in what enters, or a dosing rate: the dimension tells (a rate has no length in it).
-    const perFlow = form.level.dimension[0] === -3 ? flow : 1;
+    // A level is a concentration in what enters, or a dosing rate: the dimension tells.
+    const perFlow = isLevel(form.level.dimension, plant.network.basis) ? flow : 1;
     const before = (form.from?.of(plant.env) ?? 0) * perFlow;
     return { drive: constantRate(form.level.of(plant.env) * perFlow - before, lasting || undefined), before };
   }

@@ -3,6 +3,7 @@ import type { PlantSlope } from "../compile/plant-slopes.js";
 import { isClosed } from "../model/network.js";
 import type { Injection, Trial } from "../model/trial.js";
 import { SteadyEquations } from "../transfer/steady-equations.js";
+import { isLevel } from "../units/basis.js";
 import { addCurves, type Curves } from "./moved-curves.js";
 import { type Around, MovedSystem, type Probe } from "./moved-system.js";
 import { driveOf } from "./puts.js";
@@ -104,7 +105,7 @@ function aroundOf(plant: Plant, injection: Injection, i: number, move: Move, pro
   const { form } = injection;
   const entry = nodeOf(plant.entry, injection.at);
   let rate = 0;
-  if (form.is === "signal" || (form.is === "step" && isLevel(form.level.dimension)))
+  if (form.is === "signal" || (form.is === "step" && isLevel(form.level.dimension, plant.network.basis)))
     rate = move.plant ? move.plant.inflow[entry] / plant.nodes[entry].inflow : 0;
   if (move.dose?.injection === i && form.is !== "signal") {
     const from = form.is === "step" ? (form.from?.of(plant.env) ?? 0) : 0;
@@ -116,9 +117,6 @@ function aroundOf(plant: Plant, injection: Injection, i: number, move: Move, pro
     Array.from({ length: probes }, (_, r) => (move.line?.reading === r ? move.line[of] : 0));
   return { rate, delay: line("delay"), lag: line("lag") };
 }
-
-/** A level is a concentration in what enters, or a dosing rate: the dimension tells. */
-const isLevel = (dimension: readonly number[]): boolean => dimension[0] === -3;
 
 /** The vessel in balance with a rate from before: what every probe reads of it, for ever. */
 function addBalance(
@@ -144,7 +142,7 @@ function addBalance(
     const d = new Float64Array(size);
     // A level comes with the flow that it enters in, a dosing rate is thinned by it.
     const form = injection.form;
-    const follows = form.is === "step" && isLevel(form.level.dimension);
+    const follows = form.is === "step" && isLevel(form.level.dimension, plant.network.basis);
     if (!follows) d[entry] = (-before * moved.inflow[entry]) / inflow[entry] ** 2;
     for (let k = 0; k < flow.length; k++) {
       const total = inflow[to[k]];

@@ -3,6 +3,7 @@ import type { Plant } from "../compile/plant.js";
 import type { Injection, Trial } from "../model/trial.js";
 import { RefusedError } from "../problems/refused.js";
 import { problem } from "../problems/report.js";
+import { isLevel } from "../units/basis.js";
 import { partsOf } from "./entry.js";
 import type { Drive } from "./linear-system.js";
 import { courseOf, requireVarying } from "./logged-flows.js";
@@ -38,7 +39,7 @@ export function trialTracing(plant: Plant, trial: Trial, put: Put, horizon: numb
 /** Does an injection set what concentration enters, whatever the flow? */
 const isConcentration = (plant: Plant, { at, form }: Injection, put: Put): boolean =>
   plant.entry.get(at) === put.entry &&
-  (form.is === "signal" || (form.is === "step" && form.level.dimension[0] === -3)) &&
+  (form.is === "signal" || (form.is === "step" && isLevel(form.level.dimension, plant.network.basis))) &&
   put.drive.amount === 0;
 
 /** A rate at a flow as the concentration that it is. */

@@ -47,7 +47,7 @@ describe.each(documentKinds)("%s.schema.json", (kind) => {
 test("an editor refuses what the command line refuses", () => {
   const refused = [
     "network: a\nformat: 2",
-    "network: a\nformat: 1\nbasis: mass",
+    "network: a\nformat: 1\nbasis: weight",
     "network: a\nformat: 1\ncompartments: {a: {kind: zones, volume: 1 L, to: b}}",
     "network: a\nformat: 1\ncompartments: {a: {kind: dead, volume: 1 L, to: b}}",
     "network: a\nformat: 1\nchange: {}\noutlets: [b]",

@@ -1,5 +1,6 @@
 import type { Plant } from "../../compile/plant.js";
 import { partingsOf } from "../../compile/sends.js";
+import { holdUp } from "../../units/basis.js";
 import { dimensions } from "../../units/dimension.js";
 import { formatNumber, formatQuantity } from "../../units/format.js";
 import { inUnit } from "../../units/unit.js";
@@ -42,7 +43,7 @@ export function networkText(plant: Plant): string {
       [
         { title: "body" },
         { title: "kind" },
-        { title: `volume, ${volume.name}`, align: "right" },
+        { title: `${holdUp(plant.network.basis)}, ${volume.name}`, align: "right" },
         { title: `through-flow, ${flow.name}`, align: "right" },
         { title: `space time, ${time.name}`, align: "right" },
       ],
@@ -66,7 +67,7 @@ export function networkText(plant: Plant): string {
         ? ([["closed", "nothing enters or leaves, so there is no mean time"]] as const)
         : ([
             ["feed", formatQuantity(vessel.feed, flow)],
-            ["mean time", `${formatQuantity(vessel.meanTime, time)} (active volume over feed)`],
+            ["mean time", `${formatQuantity(vessel.meanTime, time)} (active ${holdUp(plant.network.basis)} over feed)`],
           ] as const)),
     ]),
   );

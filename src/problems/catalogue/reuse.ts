@@ -15,6 +15,12 @@ function help(nearest: string | undefined, known: readonly string[], before: str
 
 /** Parts, and documents that are variants of others. */
 export const reuseEntries = {
+  "part-basis": entry<{ title: string; own: string; inside: string }>({
+    severity: "error",
+    says: ({ title, own, inside }) =>
+      `'${title}' counts by ${inside} (\`basis: ${inside}\`), this network by ${own}: streams between them would not be the same thing`,
+    fix: "give both the same `basis`; what a density makes of a volume is for their own files to say",
+  }),
   "circular-use": entry<{ circle: readonly string[] }>({
     severity: "error",
     says: ({ circle }) =>

@@ -70,10 +70,13 @@ export const valueEntries = {
     fix: (d) =>
       `${d.zero ? "a zero needs its unit too" : "write the unit after the number"}: \`${d.fixed}\`${d.cut ? `; \` #\` begins a comment, so \`${d.cut}\` is not read` : ""}`,
   }),
-  "wrong-dimension": entry<{ text: string; got: string; wanted: string; example: string }>({
+  "wrong-dimension": entry<{ text: string; got: string; wanted: string; example: string; weighed?: boolean }>({
     severity: "error",
     says: (d) => `\`${d.text}\` is ${d.got}; ${d.wanted} is wanted`,
-    fix: (d) => (d.example ? `write it like \`${d.example}\`` : "write a plain number or share, without a unit"),
+    fix: (d) =>
+      d.example
+        ? `write it like \`${d.example}\`${d.weighed ? "; a network that is counted in kg and kg/h says so by `basis: mass`" : ""}`
+        : "write a plain number or share, without a unit",
   }),
   "unknown-name": entry<{
     name: string;

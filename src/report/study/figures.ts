@@ -7,6 +7,7 @@ import { sheetTable } from "../../draw/sheet-table.js";
 import type { FittedReading } from "../../fit/result.js";
 import type { Trial } from "../../model/trial.js";
 import type { Ranked, StudyResult } from "../../study/result.js";
+import { holdUp } from "../../units/basis.js";
 import { dimensions } from "../../units/dimension.js";
 import { differenceInUnit, inUnit, type Unit } from "../../units/unit.js";
 import { estimateWords } from "../digits.js";
@@ -39,7 +40,7 @@ export function vesselFigure(ranked: Ranked, trials: readonly Trial[]): Figure |
     name: "vessel",
     drawing: drawNetwork(aggregated(sheet, outermost(plant.network)), { untitled: true }),
     data: { table: sheetTable(sheet) },
-    caption: `The vessel as fitted by '${rival.network.title}', at the flow of the file. Area is volume, width is flow; behind a volume what the fit leaves possible (95 %).`,
+    caption: `The vessel as fitted by '${rival.network.title}', at the flow of the file. Area is ${holdUp(plant.network.basis)}, width is flow; behind a ${holdUp(plant.network.basis)} what the fit leaves possible (95 %).`,
   };
 }
 

@@ -1,6 +1,7 @@
 import type { Plant } from "../../compile/plant.js";
 import type { Fit } from "../../fit/result.js";
 import type { Compartment, Feed } from "../../model/network.js";
+import { holdUp } from "../../units/basis.js";
 import { dimensions } from "../../units/dimension.js";
 import { parseUnit } from "../../units/parse.js";
 import { one, type Unit } from "../../units/unit.js";
@@ -77,7 +78,7 @@ function stillWater(c: Compartment, plant: Plant, fit: Fit): Trait[] {
   if (!(share >= worthSaying)) return [];
   const { units } = plant.network;
   const known = c.values.volume && intervalOf(c.values.volume, plant, fit);
-  const size = `${estimateLine(estimate(held, known, units.unitFor(dimensions.volume)))}, ${percentOf(share)} of the volume,`;
+  const size = `${estimateLine(estimate(held, known, units.unitFor(dimensions.volume)))}, ${percentOf(share)} of the ${holdUp(plant.network.basis)},`;
   if (!c.kind.flows) {
     return [{ is: "dead", place: c.name, line: `${size} is never reached by the flow ('${c.name}')` }];
   }

@@ -212,7 +212,12 @@ function wholeNetwork(kinds: Readonly<Record<string, KindKeys>>): RecordShape {
       example: "[product]",
     },
     checks,
-    basis: later("Hold-ups in kg and flows in kg/h."),
+    basis: {
+      shape: choice("volume", "mass"),
+      says: "What the network counts in. `mass`: every `volume` is a hold-up in kg, every flow one in kg/h, and tracer in trials a mass fraction (`g/kg`) or an amount per kg; nothing asks for a density. Parts must have the same basis.",
+      default: "volume",
+      example: "mass",
+    },
   });
 }
 
