@@ -45,34 +45,34 @@ export class FlowBlocks {
 
   /** False where a block of the factors is singular. */
   factor(): boolean {
-    const { n, rows, diagonal, sweep, excess, scratch } = this;
+    const sum = this.scratch.subarray(this.n * this.n);
+    for (let p = 0; p < this.rows.size; p++) if (!this.factorRow(p, sum)) return false;
+    return true;
+  }
+
+  /** Delta_i = D_i less what elimination takes off it, and what the sweeps need of it. */
+  private factorRow(p: number, sum: Float64Array): boolean {
+    const { n, rows, diagonal, sweep, scratch } = this;
     const { start, middle, column, pair } = rows;
     const nn = n * n;
-    const special = this.through.size > 0;
-    const sum = scratch.subarray(nn);
-    for (let p = 0; p < rows.size; p++) {
-      const at = p * nn;
-      for (let k = 0; k < nn; k++) sum[k] = 0;
-      for (let e = start[p]; e < middle[p]; e++) {
-        const back = pair[e];
-        if (back === 0) continue;
-        const from = column[e] * nn;
-        for (let k = 0; k < nn; k++) sum[k] += back * sweep[from + k];
-      }
-      const b = special ? this.through.get(p) : undefined;
-      for (let i = 0; i < n; i++) {
-        for (let j = 0; j < n; j++) {
-          let lost = sum[i * n + j];
-          if (b) {
-            lost = 0;
-            for (let k = 0; k < n; k++) lost += b[i * n + k] * sum[k * n + j];
-          }
-          scratch[i * n + j] = diagonal[at + i * n + j] - lost;
-        }
-      }
-      if (!this.invert(p, at, b)) return false;
+    for (let k = 0; k < nn; k++) sum[k] = 0;
+    for (let e = start[p]; e < middle[p]; e++) {
+      const back = pair[e];
+      const from = column[e] * nn;
+      for (let k = 0; k < nn; k++) sum[k] += back * sweep[from + k];
     }
-    return excess.length === 0 || Number.isFinite(excess[excess.length - 1]);
+    const b = this.through.size > 0 ? this.through.get(p) : undefined;
+    for (let i = 0; i < n; i++) {
+      for (let j = 0; j < n; j++) {
+        let lost = sum[i * n + j];
+        if (b) {
+          lost = 0;
+          for (let k = 0; k < n; k++) lost += b[i * n + k] * sum[k * n + j];
+        }
+        scratch[i * n + j] = diagonal[p * nn + i * n + j] - lost;
+      }
+    }
+    return this.invert(p, p * nn, b);
   }
 
   /** From Delta_i in scratch. */
@@ -82,7 +82,7 @@ export class FlowBlocks {
     if (n === 2 && !b) {
       const [a, c, d, e] = [scratch[0], scratch[1], scratch[2], scratch[3]];
       const det = a * e - c * d;
-      if (!(Math.abs(det) > 1e-14 * (Math.abs(a * e) + Math.abs(c * d)))) return false;
+      if (!(Math.abs(det) > 1e-14 * (Math.abs(a * e) + Math.abs(c * d))) || !Number.isFinite(det)) return false;
       sweep[at] = e / det;
       sweep[at + 1] = -c / det;
       sweep[at + 2] = -d / det;

@@ -176,61 +176,71 @@ class CircleState implements System {
   }
 
   residual(y: Float64Array, f: Float64Array): boolean {
-    const { size: r, rows, circle, made, mix, memory, conserved } = this;
-    const { free } = conserved;
-    const special = circle.bodies.size > 0;
-    for (let p = 0; p < rows.size; p++) {
-      this.enter(p, y);
-      if (memory[p] > 0) {
-        this.expand(p, y, p * r);
-        this.reactions.cell.production(this.all, 0, made, 0);
-        for (let k = 0; k < r; k++) f[p * r + k] = mix[k] - y[p * r + k] + memory[p] * made[free[k]];
-        continue;
-      }
-      const body = special ? circle.bodies.get(rows.order[p]) : undefined;
-      if (body && !this.through(p, body)) return false;
-      for (let k = 0; k < r; k++) f[p * r + k] = mix[k] - y[p * r + k];
-    }
+    for (let p = 0; p < this.rows.size; p++) if (!this.miss(p, y, f)) return false;
     return true;
   }
 
   step(y: Float64Array, f: Float64Array, rate: number, relative: number, out: Float64Array): boolean {
-    const { size: r, rows, circle, memory, reduced, blocks } = this;
-    const { diagonal, through } = blocks;
-    const rr = r * r;
-    const special = circle.bodies.size > 0;
-    for (let p = 0; p < rows.size; p++) {
-      const body = special ? circle.bodies.get(rows.order[p]) : undefined;
-      for (let e = 0; e < rr; e++) reduced[e] = 0;
-      if (memory[p] > 0) {
-        this.expand(p, y, p * r);
-        this.reactions.cell.jacobian(this.all, 0, this.slope, 0);
-        this.reduce();
-        for (let e = 0; e < rr; e++) reduced[e] *= -memory[p];
-        for (let k = 0; k < r; k++) reduced[k * r + k] += 1 + memory[p] * rate - rows.own[p];
-      } else if (body) {
-        this.enter(p, y);
-        if (!this.through(p, body, this.slope)) return false;
-        this.reduce();
-        through.set(p, reduced.slice());
-        for (let e = 0; e < rr; e++) reduced[e] *= -rows.own[p];
-        for (let k = 0; k < r; k++) reduced[k * r + k] += 1;
-      } else for (let k = 0; k < r; k++) reduced[k * r + k] = 1 - rows.own[p];
-      for (let e = 0; e < rr; e++) diagonal[p * rr + e] = reduced[e];
-    }
-    if (!blocks.factor()) return false;
-    const reached = blocks.solve(f, out, relative, mostSteps);
+    for (let p = 0; p < this.rows.size; p++) if (!this.linearize(p, y, rate)) return false;
+    if (!this.blocks.factor()) return false;
+    const reached = this.blocks.solve(f, out, relative, mostSteps);
     // A step that is not quite what was asked may still be a good one: the residual decides.
     return reached < 0.9 && Number.isFinite(out[0]);
   }
 
+  /** What the balance at a place misses. */
+  private miss(p: number, y: Float64Array, f: Float64Array): boolean {
+    const { size: r, mix } = this;
+    const tau = this.memory[p];
+    this.enter(p, y);
+    const body = tau > 0 ? undefined : this.bodyAt(p);
+    if (body && !this.through(p, body)) return false;
+    for (let k = 0; k < r; k++) f[p * r + k] = mix[k] - y[p * r + k];
+    if (tau === 0) return true;
+    const { made, conserved } = this;
+    this.expand(p, y, p * r);
+    this.reactions.cell.production(this.all, 0, made, 0);
+    for (let k = 0; k < r; k++) f[p * r + k] += tau * made[conserved.free[k]];
+    return true;
+  }
+
+  /** Sets the matrix of -dF/dy at a place, with what slows down in pseudo-time. */
+  private linearize(p: number, y: Float64Array, rate: number): boolean {
+    const { size: r, reduced, blocks } = this;
+    const rr = r * r;
+    const tau = this.memory[p];
+    const own = this.rows.own[p];
+    const body = tau > 0 ? undefined : this.bodyAt(p);
+    for (let e = 0; e < rr; e++) reduced[e] = 0;
+    if (tau > 0) {
+      this.expand(p, y, p * r);
+      this.reactions.cell.jacobian(this.all, 0, this.slope, 0);
+      this.reduce();
+      for (let e = 0; e < rr; e++) reduced[e] *= -tau;
+      for (let k = 0; k < r; k++) reduced[k * r + k] += 1 + tau * rate - own;
+    } else if (body) {
+      this.enter(p, y);
+      if (!this.through(p, body, this.slope)) return false;
+      this.reduce();
+      blocks.through.set(p, reduced.slice());
+      for (let e = 0; e < rr; e++) reduced[e] *= -own;
+      for (let k = 0; k < r; k++) reduced[k * r + k] += 1;
+    } else for (let k = 0; k < r; k++) reduced[k * r + k] = 1 - own;
+    for (let e = 0; e < rr; e++) blocks.diagonal[p * rr + e] = reduced[e];
+    return true;
+  }
+
+  private bodyAt(p: number): Pass | undefined {
+    const { bodies } = this.circle;
+    return bodies.size > 0 ? bodies.get(this.rows.order[p]) : undefined;
+  }
+
   /** Solves every node by itself, one after the other downstream, each with what the others are at that moment. */
   sweep(): void {
-    const { size: r, rows, circle, mix, x, memory } = this;
-    const special = circle.bodies.size > 0;
+    const { size: r, rows, mix, x, memory } = this;
     for (let p = 0; p < rows.size; p++) {
       this.enter(p, x);
-      const body = special ? circle.bodies.get(rows.order[p]) : undefined;
+      const body = memory[p] > 0 ? undefined : this.bodyAt(p);
       if (memory[p] > 0) this.settleCell(p);
       else if (!body || this.through(p, body)) x.set(mix, p * r);
     }

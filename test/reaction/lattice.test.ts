@@ -119,3 +119,9 @@ test("bodies of every kind in a large circle are solved with its cells", () => {
   expect(s.conserved).toBeLessThan(1e-11);
   for (const c of s.closure) expect(Math.abs(c)).toBeLessThan(1e-10);
 });
+
+test("without a chemistry a large circle only mixes", () => {
+  const s = steadyState(plantOf(lattice(7, 2)), undefined, dutyOf(undefined, { feed: { tracer: 3 } }));
+  expect(s.converged).toBe(true);
+  expect(s.outlets[0].concentrations[0]).toBeCloseTo(3, 12);
+});
