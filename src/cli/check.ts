@@ -1,5 +1,6 @@
 import type { Plant } from "../compile/plant.js";
-import { parseAny } from "../parse/any.js";
+import { parseNetwork } from "../parse/network.js";
+import type { ParseOptions } from "../parse/parsed.js";
 import { githubAnnotations } from "../problems/formats/github.js";
 import { sarifLog } from "../problems/formats/sarif.js";
 import { problemJson } from "../problems/json.js";
@@ -26,13 +27,17 @@ interface Checked {
 }
 
 /** `check FILE…`: every problem of every file; of a sound network its balance. */
-export function check(files: readonly string[], { format }: CheckOptions, { inputs, io }: Context): Outcome {
-  const checked = files.map((file): Checked => {
+export async function check(
+  files: readonly string[],
+  { format }: CheckOptions,
+  { inputs, io }: Context,
+): Promise<Outcome> {
+  const checked: Checked[] = [];
+  for (const file of files) {
     const text = inputs.text(file);
-    if (typeof text !== "string") return { file, kind: undefined, problems: [text], plant: undefined };
-    const { kind, network, problems } = parseAny(text, inputs.options(file));
-    return { file, kind, problems, plant: network?.start };
-  });
+    if (typeof text !== "string") checked.push({ file, kind: undefined, problems: [text], plant: undefined });
+    else checked.push({ file, ...(await parsed(text, inputs.options(file))) });
+  }
   const problems = checked.flatMap((c) => c.problems);
   const ok = !hasErrors(problems);
   return {
@@ -53,6 +58,16 @@ export function check(files: readonly string[], { format }: CheckOptions, { inpu
       };
     },
   };
+}
+
+/** What reads all sorts of documents is loaded only where a sound network is not all there is: starting is most of a check. */
+async function parsed(text: string, options: ParseOptions): Promise<Omit<Checked, "file">> {
+  const sound = /^(?:[ \t]*(?:#.*)?\r?\n)*network:/.test(text) && !/^change:/m.test(text);
+  const alone = sound ? parseNetwork(text, options) : undefined;
+  if (alone?.document) return { kind: "network", problems: alone.problems, plant: alone.document.start };
+  const { parseAny } = await import("../parse/any.js");
+  const { kind, network, problems } = parseAny(text, options);
+  return { kind, problems, plant: network?.start };
 }
 
 function textOf(

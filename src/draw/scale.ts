@@ -65,7 +65,7 @@ export function typeset(written: string): string {
       /(\d)e([+-]?)(\d+)/g,
       (_, digit: string, sign: string, power: string) => `${digit}×10${raised(sign + power)}`,
     )
-    .replace(/([\d\u2070-\u2079⁰¹²³]) (?=[A-Za-zµ°%])/g, "$1\u2009");
+    .replace(/(\d|10[\u2070-\u2079⁰¹²³\u207b]+) (?=[A-Za-zµ°%])/g, "$1\u2009"); // not behind the ³ of m³
 }
 
 /** A power set high: 10⁻⁵. */

@@ -7,7 +7,7 @@ import { beside } from "../read/paths.js";
 import { countWrong, dataRows, decimalOf, isMissing, readNumber, type Wrong, wrongAt } from "../read/table.js";
 import { child, type Tree, textOf } from "../read/tree.js";
 import { fromUnit, type Unit } from "../units/unit.js";
-import { column, csvOptions } from "./trial-table.js";
+import { column, csvOptions } from "./table-keys.js";
 
 /** Standards of a calibration, SI; rows without one of the two are passed over. Undefined where something is wrong; reported. */
 export function readStandards(

@@ -1,16 +1,16 @@
 import type { Report } from "../problems/report.js";
 import { clockFormat } from "../read/clock.js";
-import type { CsvOptions } from "../read/csv.js";
 import { decodeText } from "../read/decode.js";
 import type { Files } from "../read/files.js";
 import { openTable } from "../read/open.js";
 import { beside } from "../read/paths.js";
 import { type ReadSeries, readSeries, type SeriesSpec } from "../read/series.js";
-import { child, itemsOf, type MapNode, type Tree, textOf } from "../read/tree.js";
+import { child, type MapNode, type Tree, textOf } from "../read/tree.js";
 import { dimensions } from "../units/dimension.js";
 import { parseUnit } from "../units/parse.js";
 import type { Unit } from "../units/unit.js";
 import { resolveDetectorUnit } from "./detector.js";
+import { column, csvOptions } from "./table-keys.js";
 import { resolveUnit } from "./value.js";
 
 /** Where the table of a reading is, how its clock is written, and what it holds. */
@@ -60,14 +60,6 @@ function temperatureColumn(node: Tree | undefined, file: Tree, report: Report): 
 
 const minute: Unit = { name: "min", factor: 60, offset: 0, dimension: dimensions.time };
 
-/** The column that a table's key names, by header or by position. */
-export function column(node: Tree | undefined, file: Tree): { column: string | number; at: Tree["at"] } | undefined {
-  const name = child(node, "column");
-  if (name?.type !== "scalar") return undefined;
-  const isPosition = name.plain && /^\d+$/.test(name.text);
-  return { column: isPosition ? Number(name.text) : name.text.trim(), at: name.at ?? file.at };
-}
-
 function resolveFormat(time: Tree | undefined, report: Report): ReturnType<typeof clockFormat> | "faulty" {
   const text = textOf(time, "format");
   const node = child(time, "format");
@@ -87,20 +79,6 @@ function checkUnits(node: MapNode, time: Unit | undefined, value: Unit | undefin
   if (!child(before.time, "format")) return true;
   report("unit-and-format", child(before.time, "unit")?.at ?? node.at, { column: name("time") });
   return false;
-}
-
-/** What `csv:` says of how a table is written. */
-export function csvOptions(node: Tree | undefined): CsvOptions {
-  const separator = textOf(node, "separator");
-  const decimal = textOf(node, "decimal");
-  const header = textOf(node, "header");
-  const missing = itemsOf(child(node, "missing")).flatMap((m) => (m.type === "scalar" ? [m.text] : []));
-  return {
-    ...(separator === undefined ? {} : { separator: /^(tab|\\t)$/i.test(separator) ? "\t" : separator }),
-    ...(decimal === "comma" || decimal === "point" ? { decimal } : {}),
-    ...(header === undefined ? {} : { header: Number(header) }),
-    missing,
-  };
 }
 
 /** A unit by its name where it is surely one. */

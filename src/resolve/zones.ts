@@ -13,7 +13,7 @@ import type { Span } from "../text/source.js";
 import { type Basis, inBasis } from "../units/basis.js";
 import { type Dimension, dimensions } from "../units/dimension.js";
 import type { Unit } from "../units/unit.js";
-import { column, csvOptions } from "./trial-table.js";
+import { column, csvOptions } from "./table-keys.js";
 import { nowhere } from "./unknown.js";
 import { resolveUnit } from "./value.js";
 import { balanceZones } from "./zone-balance.js";
