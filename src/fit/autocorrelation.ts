@@ -24,7 +24,7 @@ export function autocorrelationOf(blocks: readonly Block[], residuals: Float64Ar
   let product = 0;
   let n = 0;
   for (const b of blocks) {
-    const order = [...b.time.keys()].sort((i, j) => b.time[i] - b.time[j]);
+    const order = [...b.time.keys()].filter((i) => !b.censored?.[i]).sort((i, j) => b.time[i] - b.time[j]);
     for (let k = 0; k < order.length; k++) {
       const e = residuals[b.from + order[k]];
       square += e * e;

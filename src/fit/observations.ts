@@ -16,6 +16,10 @@ export interface Block {
   readonly measured: Float64Array;
   /** Change of `measured` for one standard deviation of each thing that a calibration leaves open. */
   readonly doubts: readonly Float64Array[];
+  /** Per point: -1 at or below the lower limit, 1 at or above the upper one, 0 seen; undefined where all are seen. */
+  readonly censored: Int8Array | undefined;
+  /** Of censored points in a problem that counts them: share of the information of a seen one. */
+  readonly information?: Float64Array;
   /** Readings of one dimension share a group, and with it one unknown variance. */
   readonly group: number;
   /** Unit of the group (that of its first reading): residuals are counted in it. */
@@ -64,16 +68,19 @@ export function blocksOf(trials: readonly Trial[]): Block[] {
 }
 
 /** Points of a reading after calibration and `leave-out` (both ends included), finite ones only, in order of time. */
-function keptPoints(reading: Reading): Pick<Block, "time" | "measured" | "doubts"> {
+function keptPoints(reading: Reading): Pick<Block, "time" | "measured" | "doubts" | "censored"> {
   const { series, leaveOut } = reading;
   const concentration = concentrationsOf(reading);
-  if (!series || !concentration) return { time: new Float64Array(0), measured: new Float64Array(0), doubts: [] };
+  if (!series || !concentration)
+    return { time: new Float64Array(0), measured: new Float64Array(0), doubts: [], censored: undefined };
   const value = (i: number): number => concentration[i];
   const leftOut = (t: number): boolean => leaveOut.some((s) => t >= s.from && t <= s.to);
   const kept = Array.from(series.time.keys()).filter((i) => Number.isFinite(value(i)) && !leftOut(series.time[i]));
   kept.sort((i, j) => series.time[i] - series.time[j]);
   const pick = (from: Float64Array): Float64Array => Float64Array.from(kept, (i) => from[i]);
-  return { time: pick(series.time), measured: pick(concentration), doubts: reading.doubts.map(pick) };
+  const flags = reading.censored && Int8Array.from(kept, (i) => reading.censored?.[i] ?? 0);
+  const censored = flags?.some((f) => f !== 0) ? flags : undefined;
+  return { time: pick(series.time), measured: pick(concentration), doubts: reading.doubts.map(pick), censored };
 }
 
 /** Number of points of all blocks. */
@@ -89,7 +96,8 @@ export function thinned(blocks: readonly Block[], most: number): readonly Block[
   let from = 0;
   return blocks.map((b) => {
     const kept = (_: number, i: number): boolean => i % stride === stride >> 1 || b.time.length < 2 * stride;
-    const thin = { ...b, from, time: b.time.filter(kept), measured: b.measured.filter(kept) };
+    const censored = b.censored?.filter(kept);
+    const thin = { ...b, from, time: b.time.filter(kept), measured: b.measured.filter(kept), censored };
     from += thin.time.length;
     return thin;
   });

@@ -33,8 +33,9 @@ export function settle(
   for (let round = 0; round < 20; round++) {
     const { problem: before, at: old } = settled;
     const weights = first.moving ? weightsFor(setup, { ...old, before: before.weight }) : first;
-    const spread = spreadOf(problemWith(setup, weights.weight, priorsOf(setup, 1)), x, pull);
-    const next = problemWith(setup, weights.weight, priorsOf(setup, spread));
+    const own = weights.blocks ? { ...setup, blocks: weights.blocks } : setup;
+    const spread = spreadOf(problemWith(own, weights.weight, priorsOf(own, 1)), x, pull);
+    const next = problemWith(own, weights.weight, priorsOf(own, spread));
     const end = descend(next, x, fully, watch);
     const here = next.evaluate(end.x);
     if (!here) return settled;
@@ -48,10 +49,14 @@ export function settle(
   return settled;
 }
 
-/** Degrees of freedom of a problem: the prior of a parameter counts as an observation, a held fact and its prior cancel. */
+/** Degrees of freedom of a problem: a censored reading counts by its information, the prior of a parameter counts as an observation, a held fact and its prior cancel. */
 export function freedomOf({ setup, linear, priors }: Problem): number {
   const n = setup.coordinates.length;
-  return Math.max(0, setup.observations + priors.filter((p) => p.index < n).length - n - linear);
+  const unseen = setup.blocks.reduce(
+    (sum, b) => sum + (b.information ? b.information.reduce((s, share) => s + 1 - share, 0) : 0),
+    0,
+  );
+  return Math.max(0, setup.observations - unseen + priors.filter((p) => p.index < n).length - n - linear);
 }
 
 /**

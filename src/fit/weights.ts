@@ -1,6 +1,8 @@
 import { countingVariance } from "../data/counting.js";
 import type { Reading } from "../model/trial.js";
 import type { Env } from "../model/value.js";
+import { standFor } from "./censored.js";
+import type { Block } from "./observations.js";
 import type { Evaluation } from "./problem.js";
 import type { Setup } from "./setup.js";
 
@@ -15,21 +17,25 @@ export interface Weights {
   readonly moving: boolean;
   /** Residuals are in the unit of their one group; otherwise in standard deviations. */
   readonly inUnit: boolean;
+  /** Blocks with working values for what is censored, once there is a fit; undefined where all was seen. */
+  readonly blocks?: readonly Block[];
 }
 
 /**
  * Weights from `noise:` where it is declared; without it all readings of one dimension share one unknown variance, which is
  * estimated group by group where there are several groups (iterated generalised least squares: Seber & Wild, Nonlinear
  * Regression, 1989, section 2.8.8). A relative noise is taken of the fitted curve, of the measured one before there is
- * any, and never below a thousandth of its peak.
+ * any, and never below a thousandth of its peak. What is censored counts as likely as the fitted curve makes it.
  */
 export function weightsFor(setup: Setup, fitted?: Evaluation & { readonly before: Float64Array }): Weights {
   const weight = new Float64Array(setup.observations);
   const groups = Math.max(...setup.blocks.map((b) => b.group)) + 1;
   const anyNoise = setup.blocks.some((b) => b.declared.noise);
-  const spread = groups > 1 || anyNoise ? groupSpreads(setup, groups, fitted) : undefined;
+  const anyCensored = setup.blocks.some((b) => b.censored);
+  const spread = groups > 1 || anyNoise || anyCensored ? groupSpreads(setup, groups, fitted) : undefined;
   let logVariances = 0;
-  let moving = false;
+  let moving = anyCensored;
+  const stands: Block[] = [];
   for (const [k, b] of setup.blocks.entries()) {
     const noise = b.declared.noise;
     const floor = floorOf(b.declared, setup.env);
@@ -38,18 +44,38 @@ export function weightsFor(setup: Setup, fitted?: Evaluation & { readonly before
     moving ||= relative > 0 || counts !== undefined || (!noise && spread !== undefined);
     const curve = fitted ? fittedCurve(b.time, b.origin, fitted, k) : b.measured;
     const least = 1e-3 * relative * peakOf(curve);
+    const values = Float64Array.from(b.measured);
+    const information = new Float64Array(b.time.length).fill(1);
     for (let i = 0; i < b.time.length; i++) {
       const sigma = noise
         ? Math.max(Math.sqrt(floor ** 2 + (relative * curve[i]) ** 2 + (counts?.(curve[i]) ?? 0)), least)
         : spread
           ? spread[b.group]
           : b.unit.factor;
+      const side = b.censored?.[i] ?? 0;
+      if (side !== 0) {
+        // Before there is a fit, what was not seen says nothing.
+        const limit = (side < 0 ? b.declared.limits.below : b.declared.limits.above) ?? b.measured[i];
+        const stand = fitted ? standFor(side, limit, curve[i], sigma) : undefined;
+        weight[b.from + i] = stand ? Math.sqrt(stand.information) / sigma : 0;
+        values[i] = stand?.value ?? b.measured[i];
+        information[i] = stand?.information ?? 0;
+        continue;
+      }
       weight[b.from + i] = 1 / sigma;
       logVariances += 2 * Math.log(sigma / b.unit.factor);
     }
+    stands.push(b.censored ? { ...b, measured: values, information } : b);
   }
   const unknown = new Set(setup.blocks.filter((b) => !b.declared.noise).map((b) => b.group)).size;
-  return { weight, logVariances, variances: Math.max(1, unknown), moving, inUnit: !spread };
+  return {
+    weight,
+    logVariances,
+    variances: Math.max(1, unknown),
+    moving,
+    inUnit: !spread,
+    ...(anyCensored ? { blocks: stands } : {}),
+  };
 }
 
 /** Standard deviation of each group without `noise:`, SI: of its residuals, or of its data before there are any. */
@@ -64,6 +90,7 @@ function groupSpreads(
     if (b.declared.noise) continue;
     const mean = b.measured.reduce((s, y) => s + y, 0) / b.measured.length;
     for (let i = 0; i < b.time.length; i++) {
+      if (b.censored?.[i]) continue;
       const r = fitted ? fitted.residuals[b.from + i] / fitted.before[b.from + i] : b.measured[i] - mean;
       sum[b.group] += r * r;
       count[b.group]++;
