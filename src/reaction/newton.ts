@@ -40,16 +40,14 @@ export interface NewtonResult {
 interface Enough {
   readonly relative: number;
   readonly absolute: number;
-  /** Or when the residual is this small, in the mean. */
-  readonly rms: number;
 }
 
 const rounding = 1e-10;
 /** No step is asked for more accurately than this. */
 const tightest = 1e-5;
-const byElimination: Enough = { relative: 1e-11, absolute: 1e-16, rms: 0 };
+const byElimination: Enough = { relative: 1e-11, absolute: 1e-16 };
 /** Newton's method squares what a step leaves: far more than what it did not solve for. */
-const byIteration: Enough = { relative: 1e-6, absolute: 1e-15, rms: 1e-15 };
+const byIteration: Enough = { relative: 1e-6, absolute: 1e-17 };
 
 /** Newton's method for a system with its Jacobian, by block elimination. */
 export function solveNewton(system: BlockSystem, y: Float64Array): NewtonResult {
@@ -128,7 +126,7 @@ function iterate(system: System, w: Workspace, y: Float64Array, limit: number, e
     if (next === undefined) break;
     forcing = Math.max(tightest, Math.min(forcing, 0.5 * (next / norm) ** 2));
     norm = next;
-    converged = relative.done || small >= 3 || (enough.rms > 0 && norm <= enough.rms * Math.sqrt(y.length));
+    converged = relative.done || small >= 3;
   }
   return { converged, residual: norm, worst: largestAt(w.f), iterations };
 }

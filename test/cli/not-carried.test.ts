@@ -50,6 +50,20 @@ test("laplace is checked by the exact engine", async () => {
   expect(largestDifference).toBeLessThan(1e-9);
 });
 
+test("a duty reacts in it, and a study predicts with it as a rival", async () => {
+  const chemistry =
+    "chemistry: A goes\nformat: 1\nspecies: {A: {}}\nconstants: {k: 1 1/min}\nreactions: [{makes: {A: -1}, rate: k * A}]\n";
+  const duty =
+    "duty: Normal\nformat: 1\nchemistry: chemistry.yaml\nfeeds: {feed: {A: 1 mol/L}}\nreport: [conversion of A]\n";
+  const reacting = { ...files, "chemistry.yaml": chemistry, "duty.yaml": duty };
+  const one = await json(["simulate", "dispersed.yaml", "--duty", "duty.yaml"], { files: reacting });
+  expect(one.document).toMatchObject({ ok: true, converged: true, report: [{ name: "conversion of A" }] });
+  const study = { ...reacting, "study.yaml": files["study.yaml"].replace("tank.yaml, ", "") };
+  const { status, document } = await json(["study", "study.yaml", "--starts", "1"], { files: study });
+  expect(status).toBe(0);
+  expect(document.predictions).toMatchObject([{ name: "conversion of A", value: expect.any(Number) }]);
+});
+
 test("check and draw take it", async () => {
   expect((await backmix(["check", "dispersed.yaml"], { files })).status).toBe(0);
   expect((await backmix(["draw", "dispersed.yaml", "-o", "a.svg"], { files })).status).toBe(0);
