@@ -1,6 +1,6 @@
 import type { Plant } from "../../compile/plant.js";
 import type { Fit } from "../../fit/result.js";
-import type { Compartment, Feed } from "../../model/network.js";
+import { type Compartment, type Feed, isClosed } from "../../model/network.js";
 import { holdUp } from "../../units/basis.js";
 import { dimensions } from "../../units/dimension.js";
 import { parseUnit } from "../../units/parse.js";
@@ -42,7 +42,8 @@ const worthSaying = 0.002;
 
 /** Bypasses, dead water, quiet zones and recycles of a fitted plant, with intervals where the fit gives them. */
 export function traitsOf(plant: Plant, fit: Fit): Trait[] {
-  const recycles = plant.streams.filter((s) => s.role === "recycle");
+  // In a closed vessel all goes round: that is no finding, and there is no feed to measure it by.
+  const recycles = isClosed(plant) ? [] : plant.streams.filter((s) => s.role === "recycle");
   const feed = plant.feeds.reduce((sum, f) => sum + f.flow, 0);
   return [
     ...plant.network.feeds.flatMap((f) => bypasses(f, plant, fit)),
