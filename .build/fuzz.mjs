@@ -1,5 +1,7 @@
 // Feeds mutated files to the program for as long as asked: `npm run fuzz -- --minutes 10 --seed 2`.
+// `npm run fuzz -- --networks 1000 --seed 2` puts random networks through the engines instead.
 // `--only N` makes one input again, prints it and what came of it. Ends with status 1 where an input was taken badly.
+import { spawnSync } from "node:child_process";
 import { mkdtempSync, rmSync, symlinkSync } from "node:fs";
 import { tmpdir } from "node:os";
 import { join } from "node:path";
@@ -17,6 +19,7 @@ const { values } = parseArgs({
     minutes: { type: "string", default: "1" },
     seed: { type: "string", default: "1" },
     only: { type: "string" },
+    networks: { type: "string" },
   },
 });
 const minutes = Number(values.minutes);
@@ -25,6 +28,13 @@ const only = values.only === undefined ? undefined : Number(values.only);
 if (![minutes, seed, only ?? 0].every((x) => Number.isFinite(x) && x >= 0)) {
   console.error("usage: npm run fuzz -- [--minutes M] [--seed S] [--only N]");
   process.exit(2);
+}
+
+if (values.networks !== undefined) {
+  const vitest = join(root, "node_modules/vitest/vitest.mjs");
+  const env = { ...process.env, BACKMIX_NETWORKS: values.networks, BACKMIX_SEED: values.seed };
+  const args = [vitest, "run", "test/simulate/random.test.ts"];
+  process.exit(spawnSync(process.execPath, args, { cwd: root, env, stdio: "inherit" }).status ?? 1);
 }
 
 if (schemasAreStale()) await writeSchemas();

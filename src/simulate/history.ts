@@ -108,7 +108,7 @@ export class History {
   value(signal: number, t: number, side: number): number {
     if (this.steps === 0) return 0;
     const k = this.locate(t, side);
-    this.basis.weigh((t - this.starts[k]) / this.lengths[k], this.weights);
+    this.basis.weigh(this.partOf(k, t), this.weights);
     return this.sum(k, signal);
   }
 
@@ -116,8 +116,13 @@ export class History {
   integral(signal: number, t: number): number {
     if (this.steps === 0) return 0;
     const k = this.locate(t, 1);
-    this.basis.weighIntegral((t - this.starts[k]) / this.lengths[k], this.weights);
+    this.basis.weighIntegral(this.partOf(k, t), this.weights);
     return this.before[k * this.signals + signal] + this.lengths[k] * this.sum(k, signal);
+  }
+
+  /** Steps may be shorter than rounding of the time: never far beyond one. */
+  private partOf(k: number, t: number): number {
+    return Math.max(0, Math.min(1, (t - this.starts[k]) / this.lengths[k]));
   }
 
   private sum(k: number, signal: number): number {

@@ -128,9 +128,9 @@ export function runStage(stage: Stage, ask: StageAsk, given: (answer: StageAnswe
       size: n,
       rhs: (t, y, dy) => {
         if (stage.size === 0) dy[0] = 0;
-        else stage.rhs(t, y, dy, side(t));
+        else stage.rhs(from + t, y, dy, side(from + t));
       },
-      ...(stage.size > 0 && { pattern: stage.pattern, jacobian: (t, _, entries) => stage.jacobian(t, entries) }),
+      ...(stage.size > 0 && { pattern: stage.pattern, jacobian: (t, _, entries) => stage.jacobian(from + t, entries) }),
     },
     relative,
     stages,
@@ -151,21 +151,21 @@ export function runStage(stage: Stage, ask: StageAsk, given: (answer: StageAnswe
     }
     const stretch: StiffStretch = {
       rhs: () => undefined,
-      from,
-      to,
+      from: 0, // each stretch has its own clock: just after a pulse steps may be shorter than rounding of the time
+      to: to - from,
       relative,
       absolute: absolute * ask.scale,
       maxSteps: mostSteps - answer.steps,
       outputs: [],
-      longest: ask.longest,
+      longest: (t) => ask.longest(from + t),
       firstStep: kicked ? first * ask.unit : Math.max(first * ask.unit, lastStep / 8),
-      ...(loops.length > 0 && { judge }),
-      accepted,
+      ...(loops.length > 0 && { judge: (t, h, y, z) => judge(from + t, h, y, z) }),
+      accepted: (t, h, y, z) => accepted(from + t, h, y, z),
     };
     const result = integrator(stretch, x, () => undefined);
     answer.steps += result.steps;
     if (result.halt) {
-      answer.stopped = { t: result.t, why: result.halt, node: fastest(stage, result.t, x) };
+      answer.stopped = { t: from + result.t, why: result.halt, node: fastest(stage, from + result.t, x) };
       break;
     }
     if (result.paused) break;
