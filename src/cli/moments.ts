@@ -11,11 +11,12 @@ import { collector } from "../problems/report.js";
 import { tracerPlant } from "../simulate/tracer-plant.js";
 import { placesOf } from "../study/trial-facts.js";
 import { inUnit } from "../units/unit.js";
+import { ageCurvesCsv } from "./age-csv.js";
 import type { Context } from "./context.js";
 import type { Inputs } from "./inputs.js";
 import { momentsResultJson } from "./json/moments.js";
 import { flowThrough, knownOnDay } from "./known.js";
-import type { Outcome } from "./outcome.js";
+import { type Outcome, UsageError } from "./outcome.js";
 import { momentsText } from "./text/moments.js";
 import { curvesOn, type TextCurve } from "./text/plot.js";
 import { blocks } from "./text/table.js";
@@ -23,10 +24,12 @@ import { vesselOf } from "./vessel.js";
 
 export interface MomentsOptions {
   readonly vessel?: string;
+  readonly output?: string;
 }
 
 /** `moments TRIAL`: the data alone; flow and volume come from the vessel where one is named. */
-export function moments(file: string, { vessel }: MomentsOptions, { inputs, io }: Context): Outcome {
+export function moments(file: string, { vessel, output }: MomentsOptions, { inputs, io }: Context): Outcome {
+  if (output !== undefined && !/\.csv$/.test(output)) throw new UsageError("-o writes the curves to F.csv");
   const trial = inputs.document(file, parseTrial);
   const network = vesselFor(trial, vessel, inputs);
   const { plant } = network ? compile(network, settingsOfDay(network, trial, {})) : { plant: undefined };
@@ -42,13 +45,19 @@ export function moments(file: string, { vessel }: MomentsOptions, { inputs, io }
         }
       : {},
   );
+  if (output !== undefined) io.write(output, ageCurvesCsv(result));
   return {
     status: 0,
     text: blocks(
       momentsText(trial.title, result),
       curvesOn(io, () => result.readings.flatMap(exitAge)),
     ),
-    json: { ok: true, trial: trial.title, ...momentsResultJson(result) },
+    json: {
+      ok: true,
+      trial: trial.title,
+      ...momentsResultJson(result),
+      ...(output === undefined ? {} : { written: output }),
+    },
   };
 }
 

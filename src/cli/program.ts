@@ -125,6 +125,7 @@ function addMoments(root: Command, { perform, inputs, io }: Stage): void {
   command(root, "moments <trial>", "what the data say by themselves, without a model", [
     "moments networks/demo/salt-normal.yaml",
   ])
+    .option("-o, --output <file>", "write E, F, W, internal age and intensity with errors to F.csv")
     .option("--vessel <network>", "the network that gives flows and volume, before the trial's own `vessel:`")
     .action((trial: string, options) =>
       perform("moments", async () => (await import("./moments.js")).moments(trial, options, { inputs, io })),

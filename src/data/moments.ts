@@ -12,11 +12,13 @@ import { closedPeclet, holdback, segregation } from "./indices.js";
 import { inletMoments } from "./inlet.js";
 import { gradeOf, hopeless, judgeBaseline, judgeEnds, judgeMean, judgeRecovery } from "./judge.js";
 import { judgeLog } from "./judge-log.js";
+import { varianceOfSum } from "./persistence.js";
+import { agesOf, percentileError } from "./read-curve.js";
 import { onlyFlow, recoveryOf, tauOf, whyNoRecovery } from "./recovery.js";
 import { momentsOf } from "./response.js";
 import { type MomentsOptions, type MomentsResult, noiseFigure, nothing, type ReadingMoments } from "./result.js";
 import { seenResponse } from "./seen.js";
-import { shapeOf } from "./shape.js";
+import { shapeOf, washoutError } from "./shape.js";
 import { judgeShape } from "./shape-rules.js";
 
 export type { MomentsOptions, MomentsResult, ReadingMoments } from "./result.js";
@@ -100,7 +102,7 @@ export function readCurve(
 
   const F = distributionOf(response, found);
   const at = (p: number): number | undefined => (inlet ? undefined : shifted(F.quantile(p), curve.added.mean));
-  const [t10, t50, t90] = [at(0.1), at(0.5), at(0.9)];
+  const [t10, t90] = [at(0.1), at(0.9)];
   const meanFigure = figure(known ? mean : undefined, time, errors.mean);
   const varianceFigure = figure(known && variance > 0 ? variance : undefined, time2, errors.variance);
   findings.push(...judgeBaseline(curve, found, errors.mean));
@@ -155,6 +157,11 @@ export function readCurve(
     ...(curve.added.mean > 0 ? { approximate: true } : {}),
   });
   const relative = variance / mean ** 2;
+  const seenError = washoutError(response, found.area, curve);
+  // What baseline and tail leave open of the area, beside the noise of the points, moves every share of it.
+  const byNoise = Math.sqrt(varianceOfSum(found.gradient.area, response.sd, response.time, curve.noise.persistence));
+  const unsure = Math.sqrt(Math.max(0, errors.area ** 2 - byNoise ** 2)) / found.area;
+  const percentile = (p: number): Figure => figure(at(p), time, percentileError(F, seenError, F.quantile(p), unsure));
   const indices: Record<string, Figure> = {
     morrill: figure(t10 !== undefined && t90 !== undefined && t10 > 0 ? t90 / t10 : undefined, one),
     tanks: figure(known && variance > 0 ? 1 / relative : undefined, one, errors.relative / relative ** 2),
@@ -200,16 +207,18 @@ export function readCurve(
     mean: meanFigure,
     variance: varianceFigure,
     skewness: figure(known ? skew : undefined, one, errors.skewness),
-    t10: figure(t10, time),
-    t50: figure(t50, time),
-    t90: figure(t90, time),
+    t10: percentile(0.1),
+    t16: percentile(0.16),
+    t50: percentile(0.5),
+    t84: percentile(0.84),
+    t90: percentile(0.9),
     percentilesShifted: curve.added.mean > 0,
     indices,
     tail: response.tail,
     tailShare: found.tail,
     noise: noiseFigure(curve),
     steps,
-    curve: { time: F.time, E: F.E, F: F.F },
+    curve: agesOf(F, seenError, known ? mean : undefined),
   };
 }
 

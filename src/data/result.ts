@@ -52,7 +52,9 @@ export interface ReadingMoments {
   readonly variance: Figure;
   readonly skewness: Figure;
   readonly t10: Figure;
+  readonly t16: Figure;
   readonly t50: Figure;
+  readonly t84: Figure;
   readonly t90: Figure;
   /** True where percentiles were shifted by a detector's lag only: they are approximate. */
   readonly percentilesShifted: boolean;
@@ -69,7 +71,20 @@ export interface ReadingMoments {
     readonly effective?: number;
   };
   readonly steps: readonly CleanStep[];
-  readonly curve: { readonly time: Float64Array; readonly E: Float64Array; readonly F: Float64Array } | undefined;
+  readonly curve: ReadCurve | undefined;
+}
+
+/** The curve read, by points; SI. */
+export interface ReadCurve {
+  readonly time: Float64Array;
+  readonly E: Float64Array;
+  readonly F: Float64Array;
+  /** One standard error of F, and of W = 1 - F, by the noise of the points. */
+  readonly error: Float64Array;
+  /** Internal age density, W over the mean, 1/s; undefined where no mean is told. */
+  readonly I: Float64Array | undefined;
+  /** Escape intensity E / W, 1/s; NaN where W is below five of its errors. */
+  readonly L: Float64Array;
 }
 
 export interface MomentsResult {
@@ -104,7 +119,9 @@ export function nothing(curve: CleanCurve, time: Unit): ReadingMoments {
     variance: none(productUnit(`${time.name}^2`, time, time)),
     skewness: none(one),
     t10: none(time),
+    t16: none(time),
     t50: none(time),
+    t84: none(time),
     t90: none(time),
     percentilesShifted: false,
     indices: {},

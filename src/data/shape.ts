@@ -91,7 +91,7 @@ function widthOf(F: Distribution, error: Float64Array): Pick<Shape, "width" | "w
 }
 
 /** Error of what is still to come at each point, from the noise of the points after and before it. */
-function washoutError({ is, sd, weight, value }: Response, area: number, { noise }: CleanCurve): Float64Array {
+export function washoutError({ is, sd, weight, value }: Response, area: number, { noise }: CleanCurve): Float64Array {
   if (is === "washout") return sd;
   const grow = inflation(noise.persistence.lag1);
   const n = value.length;

@@ -22,7 +22,9 @@ function readingJson(r: ReadingMoments): object {
     variance: figureJson(r.variance),
     skewness: figureJson(r.skewness),
     t10: figureJson(r.t10),
+    t16: figureJson(r.t16),
     t50: figureJson(r.t50),
+    t84: figureJson(r.t84),
     t90: figureJson(r.t90),
     percentilesApproximate: r.percentilesShifted,
     indices: Object.fromEntries(Object.entries(r.indices).map(([name, f]) => [camel(name), figureJson(f)])),
@@ -30,7 +32,18 @@ function readingJson(r: ReadingMoments): object {
     noise: { ...r.noise, sd: figureJson(r.noise.sd) },
     steps: r.steps.map((s) => stepJson(s, time)),
     curve: r.curve
-      ? { time: series(r.curve.time, time), E: series(r.curve.E, perUnit(time)), F: series(r.curve.F, one) }
+      ? {
+          time: series(r.curve.time, time),
+          E: series(r.curve.E, perUnit(time)),
+          F: series(r.curve.F, one),
+          W: series(
+            r.curve.F.map((f) => 1 - f),
+            one,
+          ),
+          standardErrorF: series(r.curve.error, one),
+          internalAge: r.curve.I ? series(r.curve.I, perUnit(time)) : null,
+          intensity: series(r.curve.L, perUnit(time)),
+        }
       : null,
   };
 }

@@ -30,7 +30,9 @@ function readingText(r: ReadingMoments): string {
     ["variance", r.variance],
     ["skewness", r.skewness],
     ["t10", r.t10],
+    ["t16", r.t16],
     ["t50", r.t50],
+    ["t84", r.t84],
     ["t90", r.t90],
     ...Object.entries(r.indices),
   ];
