@@ -91,7 +91,9 @@ const flowLog: Shape = record({
   },
   time: { ...cleaning.time, required: true },
   value: {
-    shape: column("the flows"),
+    shape: column("the flows", {
+      unit: { shape: text, says: "The unit of the flows in that column.", example: "m3/h" },
+    }),
     says: "The column of flows, with its unit. Rows without a value are bridged by a straight line.",
     required: true,
     example: "{column: Q, unit: m3/h}",
