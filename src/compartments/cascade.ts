@@ -42,7 +42,9 @@ export const cascade: CompartmentKind = {
               pockets,
               formula: (key) => `\\left(1 + z / ${key("tanks")}\\right)^{-${key("tanks")}}`,
               unit: () => tanksInSeries(tanks),
-              response: (z, { exp, log1p, scale }) => exp(scale(log1p(scale(z, 1 / tanks)), -tanks)),
+              shape: [tanks],
+              response: (z, { exp, log1p, scale, multiply, divide }, [n]) =>
+                exp(scale(multiply(n, log1p(divide(z, n))), -1)),
             }),
           )
         : maker.joint();

@@ -1,4 +1,4 @@
-import { type Algebra, evenHyperbolic } from "../numerics/algebra.js";
+import { evenHyperbolic } from "../numerics/algebra.js";
 import { dispersedBody } from "../svg/bodies.js";
 import { axialElements } from "./axial-elements.js";
 import { formulaBlock } from "./block.js";
@@ -37,7 +37,7 @@ export const dispersed: CompartmentKind = {
   spell(maker, of): Ports {
     const { volume, peclet } = of.values;
     const pockets = pocketsOf(of);
-    const ends = of.words.ends === "open" ? openEnds(peclet) : closedEnds(peclet);
+    const ends = of.words.ends === "open" ? openEnds : closedEnds;
     const node =
       volume > 0 || pockets
         ? maker.block(
@@ -46,6 +46,7 @@ export const dispersed: CompartmentKind = {
               mixing: { is: "dispersed", peclet },
               volume,
               pockets,
+              shape: [peclet],
               unit: () => axialElements(peclet, of.words.ends === "open"),
               ...ends,
             }),
@@ -66,38 +67,37 @@ const root = (peclet: string): string => `a = \\sqrt{1 + 4 z / ${peclet}}`;
  * digits are lost at small Pe and nothing overflows at large.
  * @see Danckwerts (1953); J.F. Wehner, R.H. Wilhelm, Chem. Eng. Sci. 6 (1956) 89-93
  */
-function closedEnds(peclet: number): Ends {
-  const half = peclet / 2;
-  const formula: Ends["formula"] = (key) => {
+const closedEnds: Ends = {
+  formula: (key) => {
     const pe = key("peclet");
     return `\\frac{4 a\\, e^{${pe}/2}}{(1 + a)^2 e^{a ${pe}/2} - (1 - a)^2 e^{-a ${pe}/2}},\\qquad ${root(pe)}`;
-  };
-  const response = <T>(z: T, algebra: Algebra<T>): T => {
+  },
+  response: (z, algebra, [peclet]) => {
     const { of, add, subtract, multiply, divide, scale, exp, sqrt, size } = algebra;
-    const squared = add(of(half * half), scale(z, peclet));
-    const head = add(of(half), z);
+    const half = scale(peclet, 0.5);
+    const spread = multiply(peclet, z);
+    const squared = add(multiply(half, half), spread);
+    const head = add(half, z);
     if (size(squared) < 1) {
       const { cosh, sinhOver } = evenHyperbolic(squared, algebra);
-      return divide(of(Math.exp(half)), add(cosh, multiply(head, sinhOver)));
+      return divide(exp(half), add(cosh, multiply(head, sinhOver)));
     }
     const b = sqrt(squared);
     const fall = exp(scale(b, -2));
-    const forward = exp(divide(scale(z, -peclet), add(b, of(half))));
+    const forward = exp(divide(scale(spread, -1), add(b, half)));
     const mixed = multiply(head, divide(subtract(of(1), fall), b));
     return divide(scale(forward, 2), add(add(of(1), fall), mixed));
-  };
-  return { formula, response };
-}
+  },
+};
 
 /** G = e^((1-a) Pe/2) / a, a = sqrt(1 + 4 z/Pe). Levenspiel & Smith (1957). */
-function openEnds(peclet: number): Ends {
-  const formula: Ends["formula"] = (key) => {
+const openEnds: Ends = {
+  formula: (key) => {
     const pe = key("peclet");
     return `\\frac{1}{a} e^{(1 - a) ${pe}/2},\\qquad ${root(pe)}`;
-  };
-  const response = <T>(z: T, { of, add, divide, scale, exp, sqrt }: Algebra<T>): T => {
-    const a = sqrt(add(of(1), scale(z, 4 / peclet)));
+  },
+  response: (z, { of, add, divide, scale, exp, sqrt }, [peclet]) => {
+    const a = sqrt(add(of(1), divide(scale(z, 4), peclet)));
     return divide(exp(divide(scale(z, -2), add(of(1), a))), a);
-  };
-  return { formula, response };
-}
+  },
+};

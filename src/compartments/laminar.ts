@@ -1,5 +1,5 @@
 import { type Complex, complex } from "../numerics/complex.js";
-import { scaledExpint } from "../numerics/expint.js";
+import { scaledExpint, scaledExpintSlope } from "../numerics/expint.js";
 import { laminarBody } from "../svg/bodies.js";
 import type { Block } from "./block.js";
 import { laminarSum } from "./exponential-sums.js";
@@ -33,8 +33,15 @@ export const laminar: CompartmentKind = {
 
 /** G = 2 E3(s tau/2): nothing leaves before tau/2, then E = tau^2 / (2 t^3). */
 function laminarTube(volume: number): Block {
-  const undelayed = (s: Complex, flow: number): Complex =>
-    complex.scale(scaledExpint(3, complex.scale(s, volume / flow / 2)), 2);
+  // The last point is kept: its value serves the derivative, which serves all directions.
+  let last: { s: Complex; flow: number; x: Complex; value: Complex; slope?: Complex } | undefined;
+  const at = (s: Complex, flow: number) => {
+    if (last?.s === s && last.flow === flow) return last;
+    const x = complex.scale(s, volume / flow / 2);
+    last = { s, flow, x, value: scaledExpint(3, x) };
+    return last;
+  };
+  const undelayed = (s: Complex, flow: number): Complex => complex.scale(at(s, flow).value, 2);
   return {
     is: "laminar flow",
     mixing: { is: "segregated", stays: laminarStays },
@@ -46,6 +53,19 @@ function laminarTube(volume: number): Block {
     undelayed,
     direct: () => 0,
     spread: undelayed,
+    shape: [],
+    slope(flow, moves, flowMoves) {
+      const moved = (moves.volume - (volume / flow) * flowMoves) / flow / 2;
+      return {
+        delay: moved,
+        direct: 0,
+        spread(s) {
+          const point = at(s, flow);
+          point.slope ??= scaledExpintSlope(3, point.x, point.value);
+          return complex.scale(complex.multiply(s, point.slope), 2 * moved);
+        },
+      };
+    },
     transfer: (s, flow) => complex.multiply(complex.exp(complex.scale(s, -volume / flow / 2)), undelayed(s, flow)),
     realize: () => realizationAt(layers(), volume, undefined),
     series: (flow) => Float64Array.of(1, -volume / flow, Number.POSITIVE_INFINITY, Number.NEGATIVE_INFINITY),

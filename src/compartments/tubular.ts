@@ -41,6 +41,7 @@ export const tubular: CompartmentKind = {
 /** Plug flow past pockets: a delay V/Q, and behind it what the pockets held back. */
 function pocketedTube(volume: number, pockets: Pockets): Block {
   const response = <T>(z: T, { exp, scale }: Algebra<T>): T => exp(scale(z, -1));
+  const past = pastPockets(response, pockets);
   return {
     ...formulaBlock({
       is: "plug flow past stagnant pockets",
@@ -52,7 +53,11 @@ function pocketedTube(volume: number, pockets: Pockets): Block {
     }),
     delay: (flow) => volume / flow,
     undelayed: (s, flow) => response(pocketTime(s, complex, pockets, flow), complex),
-    ...pastPockets(response, pockets),
+    ...past,
+    slope(flow, moves, flowMoves) {
+      const slope = past.slope(flow, moves, flowMoves);
+      return slope && { ...slope, delay: (moves.volume - (volume / flow) * flowMoves) / flow };
+    },
     realize: (flow) => visits(volume, pockets, flow),
   };
 }

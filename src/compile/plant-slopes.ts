@@ -1,4 +1,4 @@
-import type { Block } from "../compartments/block.js";
+import type { Block, BlockNumbers } from "../compartments/block.js";
 import type { KindValues, NodeMaker } from "../compartments/kind.js";
 import type { ZoneTable } from "../compartments/zone-table.js";
 import type { Compartment, Network } from "../model/network.js";
@@ -18,6 +18,8 @@ export interface PlantSlope {
   readonly inflow: Float64Array;
   /** m3/s, by link. */
   readonly flow: Float64Array;
+  /** By node, of blocks. */
+  readonly blocks: ReadonlyMap<number, BlockNumbers>;
 }
 
 /** Nodes and links that a compartment spells itself out in. */
@@ -25,6 +27,10 @@ interface Spelled {
   readonly part: number[];
   readonly volume: number[];
   readonly flow: number[];
+  /** Of its blocks, one after another: volume, pockets, shape. */
+  readonly blocks: number[];
+  /** How many numbers each block has in `blocks`, by node. */
+  readonly counts: ReadonlyMap<number, number>;
 }
 
 type Brought = ReturnType<typeof broughtToMembers>;
@@ -63,6 +69,7 @@ export class PlantSlopes {
     const volume = new Float64Array(plant.columns.size);
     const flow = new Float64Array(plant.flow.length);
     const brought = broughtToMembers(network, flows.streams);
+    const blocks = new Map<number, BlockNumbers>();
     let node = network.feeds.length;
     let link = 0;
     for (const [i, c] of network.compartments.entries()) {
@@ -72,6 +79,12 @@ export class PlantSlopes {
       if (!moved) return undefined;
       volume.set(moved.volume, node);
       flow.set(moved.flow, link);
+      let first = 0;
+      for (const [k, count] of spelled[i].counts) {
+        const [v, held, exchange, ...shape] = moved.blocks.slice(first, first + count);
+        blocks.set(node + k, { volume: v, held, exchange, shape });
+        first += count;
+      }
       node += spelled[i].volume.length;
       link += spelled[i].flow.length;
     }
@@ -89,16 +102,17 @@ export class PlantSlopes {
     network.feeds.forEach((_, i) => {
       inflow[i] += flows.through[i];
     });
-    return { env, volume, inflow, flow };
+    return { env, volume, inflow, flow, blocks };
   }
 
   /** A table of flows is in proportion to what enters, where it enters at one place. */
   private zonesAlong({ inlets }: ZoneTable, i: number, through: number, link: number): Spelled | undefined {
-    const { part, volume, flow } = this.spelled[i];
+    const spelled = this.spelled[i];
+    const { volume, flow } = spelled;
     if (through !== 0 && inlets.length > 1) return undefined;
     const grows = through === 0 ? 0 : through / this.through(i);
     const flows = this.plant.flow.subarray(link, link + flow.length);
-    return { part, volume: volume.map(() => 0), flow: Array.from(flows, (q) => q * grows) };
+    return { ...spelled, volume: volume.map(() => 0), flow: Array.from(flows, (q) => q * grows) };
   }
 
   private through(compartment: number): number {
@@ -131,8 +145,10 @@ export class PlantSlopes {
       slopes[key] = this.values.along(c.values[key], this.plant.env, env);
       if (slopes[key] !== 0) h = Math.min(h, Math.abs(given.values[key] / slopes[key]) / 8);
     }
-    if (h === Number.POSITIVE_INFINITY)
-      return { ...here, volume: here.volume.map(() => 0), flow: here.flow.map(() => 0) };
+    if (h === Number.POSITIVE_INFINITY) {
+      const still = (all: number[]): number[] => all.map(() => 0);
+      return { ...here, volume: still(here.volume), flow: still(here.flow), blocks: still(here.blocks) };
+    }
     if (!(h > 0)) return undefined;
     const at = (by: number): Spelled => {
       const values: Record<string, number> = {};
@@ -145,10 +161,16 @@ export class PlantSlopes {
     const same = (s: Spelled): boolean =>
       s.part.length === here.part.length &&
       s.part.every((p, k) => p === here.part[k]) &&
-      s.flow.length === here.flow.length;
+      s.flow.length === here.flow.length &&
+      s.blocks.length === here.blocks.length;
     if (!same(up) || !same(down)) return undefined;
     const slope = (a: number[], b: number[]): number[] => a.map((x, k) => (x - b[k]) / (2 * h));
-    return { part: here.part, volume: slope(up.volume, down.volume), flow: slope(up.flow, down.flow) };
+    return {
+      ...here,
+      volume: slope(up.volume, down.volume),
+      flow: slope(up.flow, down.flow),
+      blocks: slope(up.blocks, down.blocks),
+    };
   }
 }
 
@@ -157,6 +179,8 @@ function spell(c: Compartment, of: KindValues, through: number, brought: NodeMak
   const part: number[] = [];
   const volume: number[] = [];
   const flow: number[] = [];
+  const blocks: number[] = [];
+  const counts = new Map<number, number>();
   const node = (sort: number, v: number): number => {
     part.push(sort);
     return volume.push(v) - 1;
@@ -167,7 +191,13 @@ function spell(c: Compartment, of: KindValues, through: number, brought: NodeMak
     cell: (v) => node(Part.Cell, v),
     delay: (v) => node(Part.Delay, v),
     joint: () => node(Part.Joint, 0),
-    block: (block: Block) => node(Part.Block, block.volume + (block.pockets?.volume ?? 0)),
+    block: (block: Block) => {
+      const { volume: own, pockets, shape } = block;
+      const added = node(Part.Block, own + (pockets?.volume ?? 0));
+      blocks.push(own, pockets?.volume ?? 0, pockets?.exchange ?? 0, ...shape);
+      counts.set(added, 3 + shape.length);
+      return added;
+    },
     chain: (_a, _b, q = through) => flow.push(q),
     exchange: (_a, _b, q) => flow.push(q, q),
     cells: (volumes) => {
@@ -180,5 +210,5 @@ function spell(c: Compartment, of: KindValues, through: number, brought: NodeMak
     },
   };
   c.kind.spell(maker, of);
-  return { part, volume, flow };
+  return { part, volume, flow, blocks, counts };
 }

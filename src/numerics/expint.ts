@@ -16,6 +16,30 @@ export function scaledExpint(n: number, z: Complex): Complex {
   return size < 60 ? multiply(exp(z), series(n, z)) : asymptotic(n, z);
 }
 
+/** Beyond this size, the asymptotic series of the slope is exact to round-off. */
+const large = 50;
+
+/**
+ * d/dz of e^z E_n(z), n = 2, 3, ..., from that value: e^z (E_n - E_(n-1)), or beyond |z| = 50 (right of the imaginary axis) its asymptotic series,
+ * since the difference cancels there.
+ * @see NIST Digital Library of Mathematical Functions, 8.19.12, 8.19.14, 8.20.2
+ */
+export function scaledExpintSlope(n: number, z: Complex, value = scaledExpint(n, z)): Complex {
+  const size = complex.size(z);
+  if (size < 1) return complex.subtract(value, scaledExpint(n - 1, z));
+  if (z.re < 0 || size < large)
+    return complex.subtract(value, divide(complex.subtract(complex.of(1), scale(value, n - 1)), z));
+  const over = divide({ re: 1, im: 0 }, z);
+  let term = scale(multiply(over, over), -1);
+  let sum = term;
+  for (let k = 1; k < 40; k++) {
+    term = multiply(scale(term, (-(k + n - 1) * (k + 1)) / k), over);
+    sum = add(sum, term);
+    if (complex.size(term) < 1e-17 * complex.size(sum)) break;
+  }
+  return sum;
+}
+
 /** Even part of the continued fraction, by the modified method of Lentz (Thompson & Barnett 1986). */
 function fraction(n: number, z: Complex): Complex {
   let b: Complex = { re: z.re + n, im: z.im };

@@ -21,17 +21,19 @@ export interface Wanted {
   /** Largest value expected; what the error is held against, unless larger values are found in the same group. */
   readonly scale: number;
   readonly group: number;
+  /** How far two node counts may differ, as a fraction of the scale; default 1e-10. */
+  readonly agreement?: number;
 }
 
 export interface Inverted {
   /** One per wanted, as long as its times. */
   readonly values: readonly Float64Array[];
-  /** Largest difference between the last two node counts, as a fraction of the scale: at most `agreement` where all settled. */
+  /** Largest difference between the last two node counts, as a fraction of the scale: at most the agreement where all settled. */
   readonly difference: number;
   readonly settled: boolean;
 }
 
-const agreement = 1e-10;
+const usualAgreement = 1e-10;
 /** Terms that the continued fraction takes; those before it, if any, are summed as they are. */
 const tail = 61;
 const ratio = 4;
@@ -72,6 +74,7 @@ export function invert(
   });
   const found = new Map<number, number>(); // group -> largest value
   let difference = 0;
+  let settled = true;
   for (const [power, rows] of [...windows].sort(([a], [b]) => b - a)) {
     const window = new Window(transforms, unit * ratio ** power);
     let open = [...rows].map(([w, at]): Open => ({ w, at, last: undefined, off: Number.POSITIVE_INFINITY }));
@@ -80,7 +83,7 @@ export function invert(
       window.extend(head + tail);
       window.limit(head + tail);
       for (const o of open) {
-        const { transform, power: divided, times, scale, group } = wanted[o.w];
+        const { transform, power: divided, times, scale, group, agreement = usualAgreement } = wanted[o.w];
         const now = window.values(transform, divided, head, times, o.at);
         const peak = now.reduce((m, v) => Math.max(m, Math.abs(v)), Math.max(scale, found.get(group) ?? 0));
         const { last } = o;
@@ -93,7 +96,7 @@ export function invert(
         o.last = now;
       }
       open = open.filter(({ off, last, w, at }) => {
-        if (!last || off > agreement) return true;
+        if (!last || off > (wanted[w].agreement ?? usualAgreement)) return true;
         at.forEach((i, k) => {
           values[w][i] = last[k];
         });
@@ -102,6 +105,7 @@ export function invert(
       });
     }
     if (whole && open.length > 0) return { values, difference: Number.POSITIVE_INFINITY, settled: false };
+    if (open.length > 0) settled = false;
     for (const { last, off, w, at } of open) {
       difference = Math.max(difference, off);
       at.forEach((i, k) => {
@@ -109,7 +113,7 @@ export function invert(
       });
     }
   }
-  return { values, difference, settled: difference <= agreement };
+  return { values, difference, settled };
 }
 
 interface Open {
@@ -121,12 +125,24 @@ interface Open {
 
 const differ = (a: number, b: number): number => (Number.isNaN(a - b) ? Number.POSITIVE_INFINITY : Math.abs(a - b));
 
+/** A series: its terms, the first `plain` of which are summed as they are, the others by the fraction. */
+interface Series {
+  readonly re: Float64Array;
+  readonly im: Float64Array;
+  readonly fraction: Fraction | undefined;
+  readonly plain: number;
+}
+
+const mostPowers = 8;
+
 /** The nodes of one window and the transforms there. */
 class Window {
   /** Magnitudes beyond the nodes, by damping; made when asked for. */
   private beyond: (Float64Array | undefined)[] | undefined;
   private readonly half: number;
   private readonly abscissa: number;
+  private readonly series = new Map<number, Series>();
+  private head = -1;
   private count = 0;
   private reach = 0;
   private re: Float64Array[];
@@ -180,13 +196,8 @@ class Window {
   }
 
   values(transform: number, power: number, head: number, times: Float64Array, at: readonly number[]): Float64Array {
-    const { re, im, largest } = this.terms(transform, power, head + tail);
-    if (largest === 0) return new Float64Array(at.length);
-    let end = head;
-    while (end < head + tail && Math.hypot(re[end], im[end]) > 1e-18 * largest) end++;
-    const terms = end - head - (1 - ((end - head) % 2));
-    const fraction: Fraction | undefined = terms >= 3 ? fractionOf(re, im, head, terms) : undefined;
-    const plain = fraction ? head : end;
+    const { re, im, fraction, plain } = this.seriesOf(transform, power, head);
+    if (plain === 0 && !fraction) return new Float64Array(at.length);
     return Float64Array.from(at, (i) => {
       const angle = (Math.PI * times[i]) / this.half;
       const zRe = Math.cos(angle);
@@ -202,6 +213,23 @@ class Window {
       const sum = sRe + (fraction ? fractionAt(fraction, zRe, zIm, turn) : 0);
       return (Math.exp(this.abscissa * times[i]) / this.half) * sum;
     });
+  }
+
+  /** The series of a transform, made once for all that want it from so many terms. */
+  private seriesOf(transform: number, power: number, head: number): Series {
+    if (head !== this.head) this.series.clear();
+    this.head = head;
+    const key = mostPowers * transform + power;
+    const known = this.series.get(key);
+    if (known) return known;
+    const { re, im, largest } = this.terms(transform, power, head + tail);
+    let end = largest === 0 ? 0 : head;
+    while (largest > 0 && end < head + tail && Math.hypot(re[end], im[end]) > 1e-18 * largest) end++;
+    const terms = end - head - (1 - ((end - head) % 2));
+    const fraction = terms >= 3 ? fractionOf(re, im, head, terms) : undefined;
+    const made = { re, im, fraction, plain: fraction ? head : end };
+    this.series.set(key, made);
+    return made;
   }
 
   /** Terms of the series: the transform over s^power, the first one halved. */

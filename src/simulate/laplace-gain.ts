@@ -1,5 +1,6 @@
 import type { Block } from "../compartments/block.js";
 import { Part, type Plant, type PlantNode } from "../compile/plant.js";
+import type { PlantSlope } from "../compile/plant-slopes.js";
 import { type Complex, complex } from "../numerics/complex.js";
 import { gain } from "../transfer/gain.js";
 
@@ -54,3 +55,50 @@ function blockPassing(block: Block, inflow: number, shortestDelay: number): Pass
     whole: (s) => (late ? block.transfer(s, inflow) : block.undelayed(s, inflow)),
   };
 }
+
+/** How a `Passing` moves per unit of t. */
+export interface PassingSlope {
+  /** s */
+  readonly delay: number;
+  readonly direct: number;
+  /** Undefined: not at all. */
+  readonly spread: ((s: Complex) => Complex) | undefined;
+}
+
+const still: PassingSlope = { delay: 0, direct: 0, spread: undefined };
+
+/** The derivatives of `passings` along a direction; undefined where a body has none. */
+export function passingSlopes(
+  plant: Plant,
+  passing: readonly Passing[],
+  moves: PlantSlope,
+): PassingSlope[] | undefined {
+  const slopes: PassingSlope[] = [];
+  for (const [i, { part, volume, inflow, block }] of plant.nodes.entries()) {
+    const flowMoves = moves.inflow[i];
+    if (!(inflow > 0)) {
+      slopes.push(still);
+      continue;
+    }
+    const tau = (moves.volume[i] - (volume / inflow) * flowMoves) / inflow;
+    if (part === Part.Cell && tau !== 0) slopes.push({ ...still, spread: cellSlope(volume / inflow, tau) });
+    else if (part === Part.Delay) slopes.push(passing[i].delay > 0 ? { ...still, delay: tau } : still);
+    else if (part === Part.Block) {
+      const numbers = moves.blocks.get(i);
+      const slope = numbers && block?.slope(inflow, numbers, flowMoves);
+      if (!numbers || !slope) return undefined;
+      const { volume: v, held, exchange, shape } = numbers;
+      const moved = [v, held, exchange, flowMoves, ...shape].some((x) => x !== 0);
+      slopes.push(moved ? { ...slope, delay: passing[i].delay > 0 ? slope.delay : 0 } : still);
+    } else slopes.push(still);
+  }
+  return slopes;
+}
+
+/** d/dt of 1 / (1 + s tau). */
+const cellSlope =
+  (tau: number, moves: number) =>
+  (s: Complex): Complex => {
+    const g = complex.divide(complex.of(1), { re: 1 + s.re * tau, im: s.im * tau });
+    return complex.multiply(complex.scale(s, -moves), complex.multiply(g, g));
+  };

@@ -5,6 +5,8 @@ import type { Transforms } from "../numerics/inversion.js";
 import { NodeEquations } from "../transfer/node-equations.js";
 import type { Passing } from "./laplace-gain.js";
 import type { Copy, Passes } from "./laplace-passes.js";
+import type { PassesSlope } from "./laplace-passes-slope.js";
+import { type AtNode, Tangent } from "./laplace-tangents.js";
 
 /** What to read in one copy (the last number is the rest): what leaves a node, or all that the vessel holds. */
 export interface Channel {
@@ -15,13 +17,24 @@ export interface Channel {
   readonly lag: number;
 }
 
-/** The transforms of parts, undelayed by the delay of their copy. */
+/** Along one direction: how the copies move, and the detectors of the parts (s per unit of t). */
+export interface MovedParts {
+  readonly slope: PassesSlope | undefined;
+  readonly lag: readonly number[];
+}
+
+/**
+ * The transforms of parts, undelayed by the delay of their copy; and behind them, part by part, their derivatives along each
+ * direction (index (1 + direction) * parts + part), the delay of the copy held.
+ */
 export function transformsOf(
   plant: Plant,
   passing: readonly Passing[],
-  { copies, rest, slots }: Passes,
+  sorted: Passes,
   parts: readonly Channel[],
+  moved: readonly MovedParts[] = [],
 ): Transforms {
+  const { copies, rest, slots } = sorted;
   const { nodes, from } = plant;
   const n = nodes.length;
   const into = adjacency(n, plant.to);
@@ -30,6 +43,19 @@ export function transformsOf(
   const [slotRe, slotIm] = [new Float64Array(slots), new Float64Array(slots)];
   const [cRe, cIm] = [new Float64Array(n), new Float64Array(n)];
   const [spreadRe, spreadIm] = [new Float64Array(n), new Float64Array(n)];
+  const share = plant.flow.map((q, k) => (nodes[plant.to[k]].inflow > 0 ? q / nodes[plant.to[k]].inflow : 0));
+  const tangents = moved.map(({ slope }) => slope && new Tangent(plant, passing, sorted, slope, share));
+  const [enterRe, enterIm] = [new Float64Array(n), new Float64Array(n)];
+  /** Carries the derivatives along, where there are any. */
+  const follow = (carry: (t: Tangent) => void): void => {
+    if (!tangents.some((t) => t)) return;
+    for (let i = 0; i < n; i++) {
+      const mean = nodes[i].inflow > 0 ? entering(i) : complex.of(0);
+      enterRe[i] = mean.re;
+      enterIm[i] = mean.im;
+    }
+    for (const t of tangents) if (t) carry(t);
+  };
   const wantedOf = copies.map((): number[] => []).concat([[]]);
   parts.forEach(({ copy }, p) => {
     wantedOf[copy].push(p);
@@ -79,7 +105,34 @@ export function transformsOf(
       } else value = { re: cRe[node], im: cIm[node] };
       re[p] = value.re;
       im[p] = value.im;
+      if (node === undefined) continue;
+      const none = of === sizeOf && copy < copies.length && !roundInCopies;
+      moved.forEach(({ lag: lags }, d) => {
+        const slope = none ? complex.of(0) : readSlope(s, copy, node, lag, lags[p], tangents[d], of);
+        re[(1 + d) * parts.length + p] = slope.re;
+        im[(1 + d) * parts.length + p] = slope.im;
+      });
     }
+  };
+  /** The derivative of what a part reads: of what is there, and of the detector. */
+  const readSlope = (
+    s: Complex,
+    copy: number,
+    node: number,
+    lag: number,
+    lagMoves: number,
+    tangent: Tangent | undefined,
+    of: Of,
+  ): Complex => {
+    let slope: Complex = tangent ? { re: tangent.re[node], im: tangent.im[node] } : complex.of(0);
+    if (!(lag > 0)) return slope;
+    const seen = of(complex.divide(complex.of(1), { re: 1 + lag * s.re, im: lag * s.im }));
+    const direct = of(complex.of(tangent?.slope.direct[copy]?.[node] ?? 0));
+    slope = complex.multiply(seen, complex.add(slope, direct));
+    if (lagMoves === 0) return slope;
+    const value = { re: cRe[node] + (copies[copy]?.direct[node] ?? 0), im: cIm[node] };
+    const later = of(complex.scale(complex.multiply(s, complex.multiply(seen, seen)), -lagMoves));
+    return complex.add(slope, complex.multiply(later, value));
   };
   /** With `sizes` for values: magnitudes, summed as if all pulled one way. False where the circles have no bound then. */
   const solve = (s: Complex, re: Float64Array, im: Float64Array, of: Of): boolean => {
@@ -91,6 +144,8 @@ export function transformsOf(
       cut.gainIm[i] = passing[i].delay > 0 ? 0 : g.im;
     }
     cut.factor();
+    const here: AtNode = { s, cut, whole, slotRe, slotIm, spreadRe, spreadIm, sizes: of === sizeOf };
+    for (const t of tangents) t?.begin(here);
     slotRe.fill(0);
     slotIm.fill(0);
     for (let c = 0; c <= Math.min(last, copies.length - 1) || (whole && c < copies.length); c++) {
@@ -106,6 +161,7 @@ export function transformsOf(
       }
       cut.solve(cRe, cIm);
       if (of === sizeOf && !cRe.every((x) => x >= 0)) return false;
+      follow((t) => t.copy(c, here, cRe, cIm, enterRe, enterIm));
       read(s, c, re, im, of);
       for (const { node, slot } of exits) {
         if (slot === undefined) continue;
@@ -132,14 +188,16 @@ export function transformsOf(
     }
     whole.solve(cRe, cIm);
     if (of === sizeOf && !cRe.every((x) => x >= 0)) return false;
+    follow((t) => t.rest(here, cRe, cIm, enterRe, enterIm));
     read(s, copies.length, re, im, of);
     return true;
   };
-  const unused = new Float64Array(parts.length);
+  const count = (1 + moved.length) * parts.length;
+  const unused = new Float64Array(count);
   const roundInCopies = stillRound(plant, passing);
   const round = parts.some(({ copy }) => copy === copies.length || roundInCopies);
   return {
-    count: parts.length,
+    count,
     at(sRe, sIm, re, im) {
       solve({ re: sRe, im: sIm }, re, im, asItIs);
     },

@@ -1,12 +1,13 @@
 import { requireCarried } from "../compile/carried.js";
 import type { Plant } from "../compile/plant.js";
+import type { PlantSlope } from "../compile/plant-slopes.js";
 import { isClosed } from "../model/network.js";
-import { invert, type Wanted } from "../numerics/inversion.js";
 import { SteadyEquations } from "../transfer/steady-equations.js";
 import type { Entry } from "./entry.js";
+import { type Along, addParts, type Curve } from "./laplace-curves.js";
 import { type Passing, passings } from "./laplace-gain.js";
 import { type Passes, passes } from "./laplace-passes.js";
-import { type Channel, transformsOf } from "./laplace-transforms.js";
+import { passesSlope } from "./laplace-passes-slope.js";
 import { type Drive, driveAt } from "./linear-system.js";
 import { putIn } from "./moments.js";
 import type { Balance, Seen } from "./respond.js";
@@ -14,14 +15,6 @@ import type { NodeLook, TracerWay, Tracing } from "./tracing.js";
 
 /** Copies taken out of a loop before its rest is tried in one piece; then four times as many, and so on. */
 const firstBudget = 1;
-/** Nodes per window in such a trial, and nodes times copies. */
-const trialNodes = 6_000;
-const trialWork = 1_500_000;
-/** The same where there is no other way. */
-const mostNodes = 400_000;
-const mostWork = 3_000_000;
-/** In mean times: what is asked at the very moment of a jump is the value this soon after it. */
-const soon = 4 ** -50;
 
 /**
  * Transfer functions brought back to time: exact for every kind of body. Delays are taken out first, so that spikes and jumps
@@ -30,23 +23,19 @@ const soon = 4 ** -50;
  */
 export const laplace: TracerWay = {
   name: "laplace",
-  trace(plant, entry, horizon) {
-    requireCarried(plant, "laplace");
-    const fed = plant.feeds.reduce((sum, f) => sum + f.flow, 0);
-    const flow = isClosed(plant) ? plant.columns.inflow.reduce((most, q) => Math.max(most, q), 0) : fed;
-    const unit = flow > 0 ? plant.volume.active / flow || 1 : 1;
-    return new LaplaceTracing(plant, entry, horizon, unit);
-  },
+  trace: (plant, entry, horizon) => laplaceTracing(plant, entry, horizon),
 };
 
-/** One curve: what leaves a node (seen with a lag), or all that is held. */
-interface Curve {
-  readonly node: number | undefined;
-  readonly lag: number;
-  readonly times: Float64Array;
-  readonly integral: boolean;
+/** The same, for those who want derivatives too. */
+export function laplaceTracing(plant: Plant, entry: Entry, horizon: number): LaplaceTracing {
+  requireCarried(plant, "laplace");
+  const fed = plant.feeds.reduce((sum, f) => sum + f.flow, 0);
+  const flow = isClosed(plant) ? plant.columns.inflow.reduce((most, q) => Math.max(most, q), 0) : fed;
+  const unit = flow > 0 ? plant.volume.active / flow || 1 : 1;
+  return new LaplaceTracing(plant, entry, horizon, unit);
 }
 
+/** Tracer put in at one place, in copies of the plant by the delay it has passed; more copies are made as curves need them. */
 class LaplaceTracing implements Tracing {
   private readonly passing: readonly Passing[];
   private sorted: Passes;
@@ -107,85 +96,53 @@ class LaplaceTracing implements Tracing {
   }
 
   private curves(drive: Drive, curves: readonly Curve[]): { seen: Seen[]; stopped: string | undefined } {
-    const start = (): Seen[] =>
-      curves.map(({ times }) => ({ value: new Float64Array(times.length), integral: new Float64Array(times.length) }));
-    let seen = start();
-    while (this.sorted.rest.length > 0 && !this.add(seen, drive, curves, true).settled) {
-      this.budget = 4 * Math.max(this.budget, this.sorted.copies.length);
-      this.sorted = this.sort();
-      seen = start();
-    }
-    const { settled, difference } = this.add(seen, drive, curves, false);
-    if (settled) return { seen, stopped: undefined };
-    const off = difference.toExponential(1);
-    return { seen, stopped: `the inversion did not settle: two node counts differ by ${off} of the peak` };
+    const { seen, stopped } = this.moved(drive, curves, []);
+    return { seen, stopped };
   }
 
-  /** Adds what the copies make of a drive, or the rest behind them; the rest as a trial. */
-  private add(seen: readonly Seen[], drive: Drive, curves: readonly Curve[], behind: boolean) {
-    const { plant, unit } = this;
-    const { copies, rest } = this.sorted;
-    const impulses = impulsesOf(drive);
-    const channels: Channel[] = [];
-    const wanted: Wanted[] = [];
-    const add: ((values: Float64Array) => void)[] = [];
-    curves.forEach(({ node, lag, times, integral }, c) => {
-      const dose = node === undefined ? unit : this.doses[node];
-      const parts = behind ? [copies.length] : copies.keys();
-      for (const copy of parts) {
-        const { delay } = copies[copy] ?? rest[0];
-        const direct = node === undefined ? 0 : (copies[copy]?.direct[node] ?? 0);
-        const smooth =
-          node === undefined || copy === copies.length || copies[copy].smooth[node] > 0 || (lag > 0 && direct > 0);
-        for (const { power, shift, factor } of impulses) {
-          for (const more of integral ? [0, 1] : [0]) {
-            const order = power + more;
-            const sum = more === 0 ? seen[c].value : seen[c].integral;
-            const after = times.map((t) => t - delay - shift);
-            if (lag === 0 && direct > 0 && order > 0) {
-              after.forEach((u, i) => {
-                if (u >= 0) sum[i] += factor * direct * (order === 1 ? 1 : order === 2 ? u : (u * u) / 2);
-              });
-            }
-            const due = [...after.keys()].filter((i) => after[i] >= 0);
-            if (!smooth || due.length === 0) continue;
-            wanted.push({
-              transform: channels.length,
-              power: order,
-              times: Float64Array.from(due, (i) => Math.max(after[i], soon * unit)),
-              scale: (dose / unit) * unit ** order * (order === 0 ? 0.1 : 1),
-              group: 8 * c + order,
-            });
-            add.push((values) => {
-              due.forEach((i, k) => {
-                sum[i] += factor * values[k];
-              });
-            });
-          }
-        }
-        channels.push({ copy, node, lag });
+  /**
+   * Curves and their derivatives along directions.
+   * @returns a direction without a derivative has `undefined` in its place
+   */
+  moved(drive: Drive, curves: readonly Curve[], moves: readonly CurveMoves[]): MovedSeen {
+    const start = (): Seen[] =>
+      curves.map(({ times }) => ({ value: new Float64Array(times.length), integral: new Float64Array(times.length) }));
+    const { plant, unit, passing, doses } = this;
+    const put = putIn(plant.columns.inflow, this.entry);
+    for (;;) {
+      const { sorted } = this;
+      const along = moves.map(({ plant: moved, delay, lag }): Along => {
+        const slope = moved && passesSlope(plant, passing, sorted, put, moved);
+        const gone = moved !== undefined && slope === undefined;
+        return { slope, gone, delay, lag, sums: curves.map(({ times }) => new Float64Array(times.length)) };
+      });
+      const known = along.filter(({ gone }) => !gone);
+      const parts = { plant, unit, passing, doses, sorted };
+      const seen = start();
+      if (sorted.rest.length > 0 && !addParts(parts, seen, drive, curves, true, known).settled) {
+        this.budget = 4 * Math.max(this.budget, sorted.copies.length);
+        this.sorted = this.sort();
+        continue;
       }
-    });
-    const transforms = transformsOf(plant, this.passing, this.sorted, channels);
-    const most = behind
-      ? Math.max(600, Math.min(trialNodes, trialWork / copies.length))
-      : Math.max(6_000, Math.min(mostNodes, mostWork / (copies.length * plant.nodes.length)));
-    const { values, difference, settled } = invert(transforms, wanted, unit, most, behind);
-    values.forEach((v, w) => {
-      add[w](v);
-    });
-    return { difference, settled };
+      const { settled, difference } = addParts(parts, seen, drive, curves, false, known);
+      const slopes = along.map(({ gone, sums }) => (gone ? undefined : sums));
+      if (settled) return { seen, slopes, stopped: undefined };
+      const off = difference.toExponential(1);
+      return { seen, slopes, stopped: `the inversion did not settle: two node counts differ by ${off} of the peak` };
+    }
   }
 }
 
-/** A drive as a sum of instant amounts (power 0), steps (1) and ramps (2), each from a time on. */
-function impulsesOf({ amount, times, level, slope }: Drive): { power: number; shift: number; factor: number }[] {
-  const impulses = amount === 0 ? [] : [{ power: 0, shift: 0, factor: amount }];
-  let [lastLevel, lastSlope] = [0, 0];
-  times.forEach((shift, i) => {
-    if (i > 0) lastLevel += lastSlope * (shift - times[i - 1]);
-    impulses.push({ power: 1, shift, factor: level[i] - lastLevel }, { power: 2, shift, factor: slope[i] - lastSlope });
-    [lastLevel, lastSlope] = [level[i], slope[i]];
-  });
-  return impulses.filter(({ factor }) => factor !== 0);
+/** How curves move along one direction: the plant, and of each curve its line, s per unit of t. */
+export interface CurveMoves {
+  readonly plant: PlantSlope | undefined;
+  readonly delay: readonly number[];
+  readonly lag: readonly number[];
+}
+
+interface MovedSeen {
+  readonly seen: Seen[];
+  /** By direction and curve. */
+  readonly slopes: readonly (readonly Float64Array[] | undefined)[];
+  readonly stopped: string | undefined;
 }
