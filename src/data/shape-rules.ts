@@ -43,7 +43,7 @@ const rules: readonly ShapeRule[] = [
       const whole = s.peaks.reduce((sum, p) => sum + p.area, 0);
       if (early && !isLoop(s))
         return {
-          evidence: `a peak of its own at ${formatQuantity(early.time, time, 3)}, ${percent(early.area / whole)} of the area`,
+          evidence: `a peak of its own ${early.time > 0 ? `at ${formatQuantity(early.time, time, 3)}` : "already while the tracer went in"}, ${percent(early.area / whole)} of the area`,
         };
       const line = straight(s);
       if (!line || isSlow(s)) return undefined;
@@ -92,7 +92,9 @@ const rules: readonly ShapeRule[] = [
     look: (s, time) => {
       if (!isLoop(s))
         return s.peaks.length > 0
-          ? { not: `a loop inside: ${s.peaks.length} ${s.peaks.length === 1 ? "peak" : "peaks"}` }
+          ? {
+              not: `a loop inside: ${s.peaks.length === 1 ? "there is one peak" : `the ${s.peaks.length} peaks are no echoes at even distance`}`,
+            }
           : undefined;
       const gaps = spacings(s);
       const ratio = s.peaks[1].height / s.peaks[0].height;

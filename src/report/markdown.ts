@@ -28,11 +28,7 @@ export function writeSummary(report: StudyReport): string {
       ["network", "weight", "why"],
       report.rivals.map((r) => [r.network, chance(r.weight), r.verdict]),
     ),
-    bullets(
-      "Findings",
-      report.findings.map((f) => `${f.message} (${f.evidence})`),
-    ),
-    bullets("Not supported by the data", report.notSupported),
+    bullets("Findings", firstFindings(report)),
     bullets(
       "Cautions",
       cautionsFor(report.cautions).map((c) => `${c.about}: ${c.says}`),
@@ -40,6 +36,15 @@ export function writeSummary(report: StudyReport): string {
     `\`${p.command}\`, backmix ${p.version}, seed ${p.seed}`,
   ];
   return `${parts.filter((part) => part !== "").join("\n\n")}\n`;
+}
+
+/** As many findings as leave room on the page; all of them, and what the data do not support, are in the report. */
+const mostFindings = 6;
+
+function firstFindings({ findings }: StudyReport): string[] {
+  const told = findings.slice(0, mostFindings).map((f) => `${f.message} (${f.evidence})`);
+  const more = findings.length - told.length;
+  return more > 0 ? [...told, `${more} more in the report`] : told;
 }
 
 function table(heading: string, head: readonly string[], rows: readonly (readonly string[])[]): string {

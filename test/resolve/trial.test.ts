@@ -131,7 +131,7 @@ test("a reading without a file is a plan", () => {
   );
   expect(problems).toEqual([]);
   expect(trial?.readings[0].series).toBeUndefined();
-  expect(trial?.readings[0].unit.name).toBe("mol/L");
+  expect(trial?.readings[0].unit.name).toBe("mmol/L"); // that of the floor of its noise
 });
 
 test("the floor of noise in the detector's unit becomes a concentration", () => {

@@ -75,7 +75,9 @@ export function findingsOf(result: StudyResult): { findings: ReportFinding[]; no
       ...secondLook[t.is],
     }),
   );
-  const notSupported = [...new Set(result.readings.flatMap(({ moments }) => moments.notSupported))];
+  const notSupported = result.readings.flatMap(({ trial, moments }) =>
+    moments.notSupported.map((words) => (several ? `${trial.title}: ${words}` : words)),
+  );
   return { findings: [...fromTraits, ...fromFit, ...fromData], notSupported };
 }
 
