@@ -41,8 +41,7 @@ function checkPlaces(network: Network, trial: Trial, report: Report): void {
   if (trial.tracer?.follows) followsKnown(network, trial.tracer.follows, report);
   const closed = isClosed(network);
   for (const { at, where, form } of trial.injections) {
-    const dosed =
-      form.is === "pulse" || (form.is === "step" && !form.from && !isLevel(form.level.dimension, network.basis));
+    const dosed = form.is === "pulse" || (form.is === "step" && !form.from && !isLevel(form.level.dimension));
     if (closed && !dosed) report("closed-inlet", where, { at });
   }
   for (const { of, at } of trial.contents?.levels ?? []) checkHolds(network, of, at, look, report);

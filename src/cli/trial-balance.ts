@@ -50,8 +50,6 @@ function amountUnit(plant: Plant, { injections, contents }: Trial): Unit | undef
         ? form.table.valueUnit.dimension
         : contents?.levels[0]?.level.dimension;
   if (!level) return undefined;
-  const amount = isLevel(level, basis)
-    ? times(level, inBasis(dimensions.volume, basis))
-    : times(level, dimensions.time);
+  const amount = isLevel(level) ? times(level, inBasis(dimensions.volume, basis)) : times(level, dimensions.time);
   return dimensionName(amount) === undefined ? undefined : plant.network.units.unitFor(amount);
 }

@@ -84,8 +84,9 @@ export function impossible(network: Network, flows: boolean): Problem[] {
   const { report, problems } = collector();
   const say = sayer(network);
   volumesOf(bounded, env, report, say);
-  if (flows) balanceFlows(network, env, report, say);
+  const found = flows ? balanceFlows(network, env, report, say) : undefined;
   valuesInRange(bounded, env, report, say);
+  sendsPossible(network, env, found?.streams, report, say);
   return problems.filter((p) => p.code !== "not-finite");
 }
 

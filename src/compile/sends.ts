@@ -28,14 +28,16 @@ export function sendsPossible(
 ): void {
   compartments.forEach(({ name, streams, sends = [] }, i) => {
     const flows = solved?.filter((s) => s.from === feeds.length + i);
-    for (const { of, at } of sends) {
+    for (const { of, at, unknown } of sends) {
+      if (unknown) continue;
       const { parts, shares, total, rest } = sharesOf(streams, of, env);
+      if (Number.isNaN(total)) continue; // another rule says so
       const text = (share: number): string => say(share, dimensions.ratio);
       const wrong = parts.findIndex((part, k) => part && part !== "rest" && !(shares[k] >= 0 && shares[k] <= 1));
       const part = parts[wrong];
       if (part && part !== "rest") {
-        report("share-range", part.at, { name, to: streams[wrong].to, value: text(shares[wrong]), recycle: undefined });
-      } else if (parts.filter((p) => p === "rest").length > 1) report("rest-twice", at, { name });
+        report("sends-range", part.at, { name, of, to: streams[wrong].to, value: text(shares[wrong]) });
+      } else if (parts.filter((p) => p === "rest").length > 1) report("sends-rest", at, { name, of });
       else if (rest >= 0 ? total > 1 + rounding : Math.abs(total - 1) > rounding) {
         report("sends-sum", at, { name, of, total: text(total), rest: rest >= 0 });
       } else {

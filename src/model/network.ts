@@ -76,8 +76,8 @@ export interface Compartment {
   readonly streams: readonly Stream[];
   readonly exchanges: readonly Exchange[];
   readonly toAt: Span;
-  /** Substances that divide otherwise than the liquid where its streams part: named, and where. */
-  readonly sends?: readonly { readonly of: string; readonly at: Span }[];
+  /** Substances that divide otherwise than the liquid where its streams part: named, and where; unknown where a share could not be read. */
+  readonly sends?: readonly { readonly of: string; readonly at: Span; readonly unknown: boolean }[];
 }
 
 export interface Outlet {

@@ -8,7 +8,7 @@ import type { Files } from "../read/files.js";
 import { beside } from "../read/paths.js";
 import { child, entriesOf, itemsOf, type MapNode, type ScalarNode, type Tree, textOf } from "../read/tree.js";
 import { isLevel } from "../units/basis.js";
-import { type Dimension, dimensions } from "../units/dimension.js";
+import { dimensions } from "../units/dimension.js";
 import type { Unit } from "../units/unit.js";
 import { resolveContents } from "./contents.js";
 import { meanFlow, resolveFlowLog } from "./flow-log.js";
@@ -61,7 +61,7 @@ export function resolveTrial(
   const start = injections[0]?.start ?? contents?.begins ?? 0;
   const dose = injections[0]?.form.is === "pulse" ? injections[0].form.amount : undefined;
   const first = injections[0]?.form;
-  const level = first?.is === "step" && isConcentration(first.level.dimension) ? first.level : undefined;
+  const level = first?.is === "step" && isLevel(first.level.dimension) ? first.level : undefined;
   const planned = plannedUnit(dose, level ?? contents?.levels[0]?.level);
   if (injectionNodes.length === 0 && !child(tree, "contents")) report("nothing-put-in", title?.at ?? tree.at, {});
   const readings = readingNodes.map((node, i) => {
@@ -161,8 +161,6 @@ function afterMidnight(table: ResolvedTable | undefined, start: number, clock: T
   const last = table.series.time[table.series.time.length - 1];
   return last < start - 43_200 ? moved(table, 86_400) : table;
 }
-
-const isConcentration = (d: Dimension): boolean => isLevel(d, "volume") || isLevel(d, "mass");
 
 /** The unit of concentration that a planned reading is in: that of the dose in a liter, or of what enters or is inside. */
 function plannedUnit(amount: Value | undefined, level: Value | undefined): Unit {

@@ -93,7 +93,7 @@ export function addBalance(
     const d = new Float64Array(size);
     // A level comes with the flow that it enters in, a dosing rate is thinned by it.
     const form = injection.form;
-    const follows = form.is === "step" && isLevel(form.level.dimension, plant.network.basis);
+    const follows = form.is === "step" && isLevel(form.level.dimension);
     if (!follows) d[entry] = (-before * moved.inflow[entry]) / inflow[entry] ** 2;
     for (let k = 0; k < flow.length; k++) {
       const total = inflow[to[k]];

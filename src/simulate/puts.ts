@@ -49,7 +49,7 @@ export function driveOf(plant: Plant, injection: Injection, decay = 0): { drive:
   const flow = plant.nodes[node].inflow;
   if (form.is === "step") {
     // A level is a concentration in what enters, or a dosing rate: the dimension tells.
-    const perFlow = isLevel(form.level.dimension, plant.network.basis) ? flow : 1;
+    const perFlow = isLevel(form.level.dimension) ? flow : 1;
     const before = (form.from?.of(plant.env) ?? 0) * perFlow;
     return { drive: constantRate(form.level.of(plant.env) * perFlow - before, lasting || undefined), before };
   }

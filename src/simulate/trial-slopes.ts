@@ -104,7 +104,7 @@ function aroundOf(
   const { form } = injection;
   const entry = nodeOf(plant.entry, injection.at);
   let rate = 0;
-  if (form.is === "signal" || (form.is === "step" && isLevel(form.level.dimension, plant.network.basis)))
+  if (form.is === "signal" || (form.is === "step" && isLevel(form.level.dimension)))
     rate = move.plant ? move.plant.inflow[entry] / plant.nodes[entry].inflow : 0;
   if (move.dose?.injection === i && form.is !== "signal") {
     const from = form.is === "step" ? (form.from?.of(plant.env) ?? 0) : 0;

@@ -39,7 +39,7 @@ export function trialTracing(plant: Plant, trial: Trial, put: Put, horizon: numb
 /** Does an injection set what concentration enters, whatever the flow? */
 const isConcentration = (plant: Plant, { at, form }: Injection, put: Put): boolean =>
   plant.entry.get(at) === put.entry &&
-  (form.is === "signal" || (form.is === "step" && isLevel(form.level.dimension, plant.network.basis))) &&
+  (form.is === "signal" || (form.is === "step" && isLevel(form.level.dimension))) &&
   put.drive.amount === 0;
 
 /** A rate at a flow as the concentration that it is. */

@@ -15,9 +15,15 @@ export function inBasis(dimension: Dimension, basis: Basis): Dimension {
 export const basisOfFlow = (flow: Dimension): Basis =>
   sameDimension(flow, dimensions["mass rate"]) ? "mass" : "volume";
 
-/** Is it a concentration, as a rate of dosing is not? */
-export const isLevel = (dimension: Dimension, basis: Basis): boolean =>
-  basis === "volume" ? dimension[0] === -3 : isRatio(dimension) || (dimension[0] === 0 && dimension[1] === -1);
+/**
+ * Is it a concentration, as a rate of dosing is not? Per volume, per mass, a share (5 %, 20 ppm), or what a detector shows
+ * of one; whichever the basis, for shares of a volume are as common as those of a mass.
+ */
+export const isLevel = (dimension: Dimension): boolean =>
+  dimension[0] === -3 ||
+  isRatio(dimension) ||
+  (dimension[0] === 0 && dimension[1] === -1) ||
+  sameDimension(dimension, dimensions.signal);
 
 /** What an amount makes of a hold-up, and what a dosing rate makes of a flow. */
 export const concentrationOf = (amount: Dimension, basis: Basis): Dimension =>

@@ -21,11 +21,15 @@ compartments:
   corner: {kind: stirred, volume: held}
   tube: {kind: tubular, volume: 20 L, to: loop}
   spread: {kind: dispersed, volume: 10 L, peclet: 4, ends: open, to: product}
-  loop: {kind: stirred, volume: 5 L, to: {back: turns * 4 L/min, product: rest}}
+  loop: {kind: stirred, volume: 5 L, to: {back: turns * 4 L/min, parted: rest}}
   back: {kind: tubular, volume: 3 L, to: loop}
   row: {kind: stirred, volume: 6 L, repeat: 3, to: row-end}
   row-end: {kind: part, use: part.yaml, with: {size: 4 L}, to: product}
   third: {kind: junction, to: row}
+  parted:
+    kind: junction
+    to: {product: 90 %, row: rest}
+    sends: {solids: {product: 30 %, row: 70 %}, fines: {product: 20 %, row: rest}, salts: {product: 10 %, row: 90 %}}
 outlets: [product]
 checks:
   - {volume: corner, equals: 30 L}
@@ -57,6 +61,9 @@ const slips: readonly (readonly [written: string, instead: string, told: string]
   ["back: {kind: tubular, volume: 3 L", "back: {kind: tubular, volume: 3 1/L", "wrong-dimension main.yaml 3 1/L"],
   ["row: {kind: stirred, volume: 6 L", "row: {kind: stirrd, volume: 6 L", "wrong-choice main.yaml stirrd"],
   ["with: {size: 4 L}", "with: {sise: 4 L}", "unknown-binding main.yaml sise"],
+  ["row: 70 %", "row: 75 %", "sends-sum main.yaml solids"],
+  ["product: 20 %", "product: 120 %", "sends-range main.yaml 120 %"],
+  ["product: 10 %", "prodct: 10 %", "sends-where main.yaml prodct"],
   ["third: {kind: junction, to: row}", "third: {kind: junction, to: rows}", "unknown-place main.yaml rows"],
   ["{volume: corner", "{volume: cornr", "unknown-place main.yaml cornr"],
   ["equals: 1.6 L/min", "equals: 1.6 L", "wrong-dimension main.yaml 1.6 L"],

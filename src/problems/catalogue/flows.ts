@@ -110,6 +110,16 @@ export const flowEntries = {
           ? `name the streams as \`to:\` does: ${known.join(", ")}`
           : "say under `to:` where its outflow goes first",
   }),
+  "sends-range": entry<{ name: string; of: string; to: string; value: string }>({
+    severity: "error",
+    says: ({ name, of, to, value }) => `the share of '${of}' from '${name}' to '${to}' is ${value}`,
+    fix: ({ of, name }) => `it is of all of '${of}' that leaves '${name}', so it lies between 0 % and 100 %`,
+  }),
+  "sends-rest": entry<{ name: string; of: string }>({
+    severity: "error",
+    says: ({ name, of }) => `\`rest\` stands more than once among the shares of '${of}' out of '${name}'`,
+    fix: "keep one `rest` and give the others a share",
+  }),
   "sends-sum": entry<{ name: string; of: string; total: string; rest: boolean }>({
     severity: "error",
     says: ({ name, of, total, rest }) =>
