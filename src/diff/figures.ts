@@ -1,7 +1,7 @@
 import { kindValues } from "../compile/evaluate.js";
 import type { Plant } from "../compile/plant.js";
 import type { Dimension } from "../units/dimension.js";
-import { dimensions } from "../units/dimension.js";
+import { dimensions, sameDimension } from "../units/dimension.js";
 import type { Unit } from "../units/unit.js";
 import type { Translate } from "./keys.js";
 import type { Matching } from "./match.js";
@@ -27,7 +27,11 @@ export function figuresOf(before: Plant, after: Plant, { before: a, after: b }: 
   return [...new Set([...y.keys(), ...x.keys()])].map((key): Figure => {
     const [was, is] = [x.get(key), y.get(key)];
     const { of, name } = (is ?? was) as Found;
-    const same = was !== undefined && is !== undefined && close(was.shown.value, is.shown.value);
+    const same =
+      was !== undefined &&
+      is !== undefined &&
+      sameDimension(was.shown.unit.dimension, is.shown.unit.dimension) &&
+      close(was.shown.value, is.shown.value);
     return { of, name, before: was?.shown, after: is?.shown, same };
   });
 }

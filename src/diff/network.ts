@@ -50,8 +50,20 @@ export function diffNetworks(before: Network, after: Network): NetworkDiff {
             ...change("title", before.title, after.title, before.at, after.at),
           },
         ];
+  const basis: Difference[] =
+    before.basis === after.basis
+      ? []
+      : [
+          {
+            what: "changed",
+            of: "network",
+            name: "",
+            ...change("basis", before.basis, after.basis, before.at, after.at),
+          },
+        ];
   const differences = [
     ...title,
+    ...basis,
     ...compareNamed(ownNames(before), ownNames(after), values, {
       of: (n) => n.role,
       say: sayNamed,
@@ -100,8 +112,13 @@ const valueChange = (key: string, x: Value, y: Value, a: Read, b: Read): Change[
 
 const told = <T>(what: T, { network, env }: Read): Told<T> => ({ what, network, env });
 
-function sayBody({ name, kind, values, streams, toAt }: Compartment): string {
-  const keys = Object.entries(values).map(([key, v]) => `${key} ${written(v.at)}`);
+function sayBody(body: Compartment): string {
+  const { name, kind, values, streams, sends = [], toAt } = body;
+  const keys = [
+    ...Object.entries(values).map(([key, v]) => `${key} ${written(v.at)}`),
+    ...Object.entries(wordsOf(body)).map(([key, word]) => `${key} ${word}`),
+    ...sends.map(({ of }) => `sends ${of} ${carriedWords(streams, of)}`),
+  ];
   // What a part's outlet leads to stands in another file than the outlet.
   const to = name.includes(".") ? places(streams) : written(toAt);
   return [kind.name, ...keys, ...(streams.length > 0 ? [`to ${to}`] : [])].join(", ");

@@ -290,3 +290,35 @@ outlets: [y]
     expect(valueWords(of(v), of(w))).toEqual(["20 L = 20 L", "20 L = 30 L"]);
   });
 });
+
+test("what is added or gone is told with its counts, its choices and the substances that it divides", () => {
+  const row = "second: {kind: stirred, volume: 300 L, repeat: 3, backflow: 20 %, to: {bulk: 50 %, product: rest}";
+  const after = vessel.replace(
+    "second: {kind: stirred, volume: 300 L, to: bulk}",
+    `${row}, sends: {solids: {bulk: 90 %, product: rest}}}\n  spare: {kind: dispersed, volume: 3 L, peclet: 4, ends: open, to: bulk}`,
+  );
+  const fed = after.replace("first: rest", "spare: 5 %, first: rest");
+  const gone = said(diff(fed, vessel)).find((d) => d.name === "spare");
+  expect(gone?.before).toBe("dispersed, volume 3 L, peclet 4, ends open, to bulk");
+  const renamed = fed.replaceAll("second", "quite-another").replace("volume: 300 L, repeat", "volume: 290 L, repeat");
+  const added = said(diff(vessel.replaceAll("second", "bulky"), renamed)).find((d) => d.name === "quite-another");
+  expect(added?.after).toBe(
+    "stirred, volume 290 L, backflow 20 %, repeat 3, sends solids {bulk: 90 %, product: rest}, to {bulk: 50 %, product: rest}",
+  );
+});
+
+test("another basis is told, and kilograms are never compared with liters", () => {
+  const plain =
+    "network: Tank\nformat: 1\nfeeds: {f: {flow: 1 L/min, to: a}}\ncompartments: {a: {kind: stirred, volume: 1 m3, to: o}}\noutlets: [o]\n";
+  const weighed = plain
+    .replace("format: 1\n", "format: 1\nbasis: mass\n")
+    .replace("1 L/min", "1 kg/min")
+    .replace("1 m3", "1 kg");
+  const [a, b] = [network(plain), network(weighed)];
+  const { differences, matching } = diffNetworks(a, b);
+  expect(differences.some((d) => d.key === "basis" && d.before === "volume" && d.after === "mass")).toBe(true);
+  const [before, after] = [compile(a).plant as Plant, compile(b).plant as Plant];
+  const held = figuresOf(before, after, matching).find((f) => f.of === "volume" && f.name === "all");
+  expect(held?.before?.value).toBe(held?.after?.value);
+  expect(held?.same).toBe(false);
+});

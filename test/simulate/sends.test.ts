@@ -76,7 +76,7 @@ test("shares beyond 100 %, and substances where no liquid goes, are refused for 
   );
   if (!document) throw new Error("no network");
   expect(compile(document, { lost: 0.97 }).problems.map((p) => p.code)).toEqual(["sends-sum"]);
-  expect(compile(document, { lost: -0.1 }).problems.map((p) => p.code)).toEqual(["share-range"]);
+  expect(compile(document, { lost: -0.1 }).problems.map((p) => p.code)).toEqual(["sends-range"]);
 });
 
 /** Bodies in a row, splits between them with recycles; where `parts` is given a substance divides by it. */

@@ -1,5 +1,6 @@
 import type { Difference } from "../../diff/difference.js";
 import type { Figure, Shown } from "../../diff/figures.js";
+import { sameDimension } from "../../units/dimension.js";
 import { formatNumber, formatQuantity } from "../../units/format.js";
 import { blocks, table } from "./table.js";
 
@@ -55,9 +56,10 @@ const figureTable = (of: string, figures: readonly Figure[]): string =>
 
 const shown = (s: Shown | undefined): string => (s ? formatQuantity(s.value, s.unit, 5) : "none");
 
-/** By how much it moved: "+12 %". */
+/** By how much it moved: "+12 %"; between kg and L nobody can say. */
 function ratio({ before, after }: Figure): string {
   if (!before || !after || before.value === 0) return "";
+  if (!sameDimension(before.unit.dimension, after.unit.dimension)) return "";
   const percent = (after.value / before.value - 1) * 100;
   return `${percent > 0 ? "+" : ""}${formatNumber(percent, 3)} %`;
 }
