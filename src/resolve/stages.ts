@@ -141,6 +141,10 @@ export function resolveLimits(
     const value = resolveDetectorValue(written, true, report);
     const level = value && asConcentration(`\`${key}\``, value, unit, calibration, report);
     if (level === undefined || !value) return "faulty";
+    if (Number.isNaN(level)) {
+      report("limit-unread", value.at, { limit: formatQuantity(value.of([]), value.unit ?? unit) });
+      return "faulty";
+    }
     // A detector that falls with concentration is at its lowest where there is most.
     const falls = calibration && !sameSignal(value, unit) && calibration.slope(value.of([])) < 0;
     limits[falls ? (key === "below" ? "above" : "below") : key] = level;

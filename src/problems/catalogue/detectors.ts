@@ -54,6 +54,11 @@ export const detectorEntries = {
     says: ({ row, read }) => `row ${row}: a counter with this dead time cannot show ${read}`,
     fix: "check the dead time and the unit of the readings",
   }),
+  "limit-unread": entry<{ limit: string }>({
+    severity: "error",
+    says: ({ limit }) => `the calibration curve never reaches ${limit}, so that is no limit of a concentration`,
+    fix: "write the limit as a concentration, such as that of the highest standard, or measure standards up to there",
+  }),
   "limits-reversed": entry<{ below: string; above: string }>({
     severity: "error",
     says: ({ below, above }) => `nothing lies between the limits: below ${below}, above ${above}`,
