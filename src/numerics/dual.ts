@@ -13,11 +13,13 @@ const { add, subtract, multiply, divide, scale, exp, sqrt, log1p, size } = compl
 const none: Complex = complex.of(0);
 
 /** A number that does not move, or that moves along one direction only: by 1 per unit of it. */
-export const dualOf = (value: Complex, directions: number, along = -1): Dual => ({
-  value,
-  slopes: Array.from({ length: directions }, (_, j) => (j === along ? complex.of(1) : none)),
-});
+export function dualOf(value: Complex, directions: number, along = -1): Dual {
+  const slopes: Complex[] = [];
+  for (let j = 0; j < directions; j++) slopes.push(j === along ? one : none);
+  return { value, slopes };
+}
 
+const one: Complex = complex.of(1);
 const plus = (a: Complex, b: Complex): Complex => (a === none ? b : b === none ? a : add(a, b));
 const times = (a: Complex, slope: Complex): Complex => (slope === none ? none : multiply(a, slope));
 
@@ -31,8 +33,9 @@ export function dual(directions: number): Algebra<Dual> {
     value,
     slopes: a.slopes.map((x) => times(slope, x)),
   });
+  const still: readonly Complex[] = dualOf(none, directions).slopes;
   return {
-    of: (x) => dualOf(complex.of(x), directions),
+    of: (x) => ({ value: complex.of(x), slopes: still }),
     add: (a, b) => ({ value: add(a.value, b.value), slopes: a.slopes.map((x, j) => plus(x, b.slopes[j])) }),
     subtract: (a, b) => ({
       value: subtract(a.value, b.value),

@@ -2,6 +2,7 @@ import { describe, expect, test } from "vitest";
 import { compile } from "../../src/compile/compile.js";
 import { heldFacts } from "../../src/fit/held.js";
 import { networkModel } from "../../src/fit/network-model.js";
+import { trialResponse } from "../../src/simulate/trial.js";
 import { networkOf } from "./load.js";
 import { error, errors, parametrised, pulse, respond, smooth, times, trialWith, vessel } from "./slope-errors.js";
 
@@ -96,6 +97,25 @@ describe("derivatives of curves by transfer functions agree with differences of 
       expect(slope.length).toBe(times.length);
       expect(error(slope, moved, h, kept), fact.says).toBeLessThan(1e-6);
     }
+  });
+
+  test.each([
+    ["cells and tubes", "  a: {kind: tubular, volume: 30 L, to: b}\n  b: {kind: stirred, volume: 40 L, to: out}"],
+    [
+      "other bodies",
+      "  a: {kind: tubular, volume: 30 L, to: b}\n  b: {kind: cascade, volume: 40 L, tanks: 3, to: out}",
+    ],
+  ])("a mix of places and a tracer that decays, through %s: curve and derivatives", (_, body) => {
+    const network = networkOf(parametrised(vessel(body)));
+    const trial = trialWith(pulse, "", "tracer: {half-life: 20 min}\n", "{a: 40 %, out: rest}");
+    const { plant } = compile(network);
+    if (!plant) throw new Error("no plant");
+    const [alone] = trialResponse(plant, trial, [{ time: times }]);
+    const peak = Math.max(...alone);
+    respond(network, trial, {}).forEach((c, i) => {
+      expect(Math.abs(c - alone[i])).toBeLessThan(1e-9 * peak);
+    });
+    for (const [name, off] of errors(network, trial)) expect(off, name).toBeLessThan(1e-6);
   });
 
   test("tubes of one delay that part: what is dispersed behind them has a derivative, what is not has none", () => {

@@ -23,9 +23,9 @@ export function parametrised(text: string): string {
   return body.replace("feeds:", ["parameters:", ...parameters, "feeds:"].join("\n"));
 }
 
-export function trialWith(injection: string, more = "", flows = ""): Trial {
+export function trialWith(injection: string, more = "", flows = "", at = "out"): Trial {
   const csv = `t,c\n${[...times].map((t) => `${t / 60},1`).join("\n")}\n`;
-  const text = `trial: t\nformat: 1\n${flows}injection: ${injection}\nreadings:\n  - at: out\n    file: x.csv\n    time: {column: t, unit: min}\n    value: {column: c, unit: g/L}\n${more}`;
+  const text = `trial: t\nformat: 1\n${flows}injection: ${injection}\nreadings:\n  - at: ${at}\n    file: x.csv\n    time: {column: t, unit: min}\n    value: {column: c, unit: g/L}\n${more}`;
   return trialOf(text, () => csv);
 }
 

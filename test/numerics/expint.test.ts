@@ -1,6 +1,6 @@
 import { describe, expect, test } from "vitest";
 import { type Complex, complex } from "../../src/numerics/complex.js";
-import { scaledExpint } from "../../src/numerics/expint.js";
+import { scaledExpint, scaledExpintSlope } from "../../src/numerics/expint.js";
 
 const { add, multiply, scale, subtract, exp, size } = complex;
 const ring = (radius: number): Complex[] =>
@@ -30,6 +30,26 @@ describe("exponential integrals", () => {
           // near the cut e^z E_n holds the large e^z 2 pi i z^(n-1)/(n-1)!
           const parts = 1 + size(z) * size(scaledExpint(n, z));
           expect(error / parts, `n ${n}, z ${z.re} ${z.im}`).toBeLessThan(2e-13);
+        }
+      }
+    }
+  });
+
+  test("the slope of e^z E_n is its difference quotient of the sixth order, and e^z (E_n - E_(n-1))", () => {
+    for (const radius of [0.01, 0.5, 0.99, 1.01, 5, 30, 49, 51, 300]) {
+      for (const z of ring(radius)) {
+        if (z.re < 0) continue;
+        for (const n of [2, 3]) {
+          const slope = scaledExpintSlope(n, z);
+          const h = 0.02 * radius;
+          const at = (k: number): Complex => scaledExpint(n, { re: z.re + k * h, im: z.im });
+          const pair = (k: number): Complex => subtract(at(k), at(-k));
+          const sum = add(add(scale(pair(1), 45), scale(pair(2), -9)), pair(3));
+          expect(size(subtract(scale(sum, 1 / (60 * h)), slope)) / size(slope), `${n} ${z.re} ${z.im}`).toBeLessThan(
+            1e-8,
+          );
+          const difference = subtract(scaledExpint(n, z), scaledExpint(n - 1, z));
+          expect(size(subtract(difference, slope)) * size(z)).toBeLessThan(1e-12);
         }
       }
     }
