@@ -16,6 +16,7 @@ import type { Rule } from "./rule.js";
 import { splits } from "./splits.js";
 import { statedVolume } from "./stated-volume.js";
 import { checkSubjects } from "./statements.js";
+import { streamsTwice } from "./streams-twice.js";
 import { topologyOf } from "./topology.js";
 import { closedVessel, feedsAndOutlets, waysThrough } from "./ways.js";
 import { zoneInlets } from "./zones.js";
@@ -24,6 +25,7 @@ import { zoneInlets } from "./zones.js";
 const flowRules: readonly Rule[] = [
   placeNames,
   streamTargets,
+  streamsTwice,
   zoneInlets,
   feedsAndOutlets,
   waysThrough,

@@ -1,4 +1,4 @@
-import { memberOf } from "../model/members.js";
+import { memberOf, rowMeant } from "../model/members.js";
 import type { Compartment } from "../model/network.js";
 import type { Rule } from "./rule.js";
 
@@ -14,7 +14,13 @@ export const exchanges: Rule = (network, report, { nearest }) => {
       if (!partner) {
         const known = network.compartments.filter((b) => b !== c && refusal(b).length === 0).map((b) => b.name);
         const near = nearest(e.partner, known);
-        report("unknown-place", e.at, { name: e.partner, wanted: "stirred tank", nearest: near, known });
+        report("unknown-place", e.at, {
+          name: e.partner,
+          wanted: "stirred tank",
+          nearest: near,
+          known,
+          row: rowMeant(network.compartments, e.partner),
+        });
         continue;
       }
       const refused = (member ? [c] : [c, partner]).find((b) => refusal(b).length > 0);

@@ -1,4 +1,4 @@
-import { memberNumber, memberOf } from "../model/members.js";
+import { memberNumber, memberOf, rowMeant } from "../model/members.js";
 import type { Rule } from "./rule.js";
 
 /** Where streams and exchanges reach only later members of a repeat, nothing flows in those before, unless `backflow` gets there. */
@@ -8,7 +8,12 @@ export const membersReached: Rule = (network, report) => {
     first.set(body, Math.min(first.get(body) ?? Number.POSITIVE_INFINITY, member));
   };
   for (const node of [...network.feeds, ...network.compartments]) {
-    for (const { to, enters } of node.streams) reach(to, memberNumber(`.${enters ?? ""}`) ?? 1);
+    for (const { to, enters } of node.streams) {
+      reach(to, memberNumber(`.${enters ?? ""}`) ?? 1);
+      // A tank that does not exist may be meant for any of the row.
+      const meant = rowMeant(network.compartments, to);
+      if (meant) reach(meant.name, 1);
+    }
   }
   for (const { partner } of network.compartments.flatMap((c) => c.exchanges)) {
     const body = memberOf(network.compartments, partner);

@@ -1,3 +1,4 @@
+import { rowMeant } from "../model/members.js";
 import type { Rule } from "./rule.js";
 
 /** Feeds, compartments and outlets share one set of names; every stream must go to one of them. */
@@ -35,6 +36,7 @@ export const streamTargets: Rule = (network, report, { nearest }) => {
           wanted: "compartment or outlet",
           nearest: nearest(s.to, known),
           known,
+          row: rowMeant(network.compartments, s.to),
         });
       } else if (bodies.get(s.to)?.kind.flows === false)
         report("dead-with-streams", s.at, { name: s.to, from: node.name });

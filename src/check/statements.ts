@@ -1,4 +1,4 @@
-import { memberOf } from "../model/members.js";
+import { memberOf, rowMeant } from "../model/members.js";
 import { isClosed } from "../model/network.js";
 import { followsKnown } from "./follows.js";
 import type { Rule } from "./rule.js";
@@ -27,6 +27,8 @@ export const checkSubjects: Rule = (network, report, { nearest }) => {
     }
     const { wanted, known } = subjects[what];
     if (what !== "mean-time" && memberOf(network.compartments, of)) continue;
-    if (!known.includes(of)) report("unknown-place", ofAt, { name: of, wanted, nearest: nearest(of, known), known });
+    const row = what === "mean-time" ? undefined : rowMeant(network.compartments, of);
+    if (!known.includes(of))
+      report("unknown-place", ofAt, { name: of, wanted, nearest: nearest(of, known), known, row });
   }
 };

@@ -1,4 +1,4 @@
-import { memberOf } from "../model/members.js";
+import { memberOf, rowMeant } from "../model/members.js";
 import { isClosed, type Network } from "../model/network.js";
 import type { Injection, Reading, Trial } from "../model/trial.js";
 import type { Value } from "../model/value.js";
@@ -33,7 +33,13 @@ function checkPlaces(network: Network, trial: Trial, report: Report): void {
   const constants = network.names.filter((n) => n.role === "constant").map((n) => n.name);
   const look = (name: string, at: Parameters<Report>[1], wanted: string, among: readonly string[]): void => {
     if (!among.includes(name) && !(wanted.includes("compartment") && isCell(network, name)))
-      report("unknown-place", at, { name, nearest: nearest(name, among), wanted, known: among });
+      report("unknown-place", at, {
+        name,
+        nearest: nearest(name, among),
+        wanted,
+        known: among,
+        row: wanted.includes("compartment") ? rowMeant(network.compartments, name) : undefined,
+      });
   };
   for (const { at, where } of trial.injections) {
     look(at, where, "feed or compartment", [...feeds, ...entered]);

@@ -36,9 +36,10 @@ export interface Streams {
   readonly toAt: Span;
 }
 
+const end = ({ to, enters }: Stream): string => (enters === undefined ? to : `${to}.${enters}`);
+
 /** By the whole names of the places: `out`, `{core.feed: 30 %, out: rest}`. */
 export function places(streams: readonly Stream[]): string {
-  const end = ({ to, enters }: Stream): string => (enters === undefined ? to : `${to}.${enters}`);
   if (streams.length === 1 && streams[0].split.is === "all") return end(streams[0]);
   const share = ({ split }: Stream): string => ("value" in split ? written(split.value.at) : split.is);
   return `{${streams.map((s) => `${end(s)}: ${share(s)}`).join(", ")}}`;
@@ -46,9 +47,9 @@ export function places(streams: readonly Stream[]): string {
 
 /** The shares of a substance as written: `{sludge: 98 %, effluent: rest}`. */
 export function carriedWords(streams: readonly Stream[], of: string): string {
-  const parts = streams.flatMap(({ to, carries }) => {
-    const part = carries?.get(of);
-    return part === undefined ? [] : [`${to}: ${part === "rest" ? part : written(part.at)}`];
+  const parts = streams.flatMap((s) => {
+    const part = s.carries?.get(of);
+    return part === undefined ? [] : [`${end(s)}: ${part === "rest" ? part : written(part.at)}`];
   });
   return parts.length > 0 ? `{${parts.join(", ")}}` : "as the liquid";
 }

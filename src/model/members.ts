@@ -22,3 +22,14 @@ export const memberNumber = (name: string): number | undefined => {
   const suffix = /\.([1-9]\d*)$/.exec(name)?.[1];
   return suffix === undefined ? undefined : Number(suffix);
 };
+
+/** The row of which a name speaks, though it has no such member: `chain` for `chain.5` where there are four. */
+export const rowMeant = <C extends Pick<Compartment, "name" | "counts">>(
+  compartments: readonly C[],
+  name: string,
+): { readonly name: string; readonly tanks: number } | undefined => {
+  const owner = /^(.+)\.[^.]+$/.exec(name)?.[1];
+  const row = owner === undefined ? undefined : compartments.find((c) => c.name === owner);
+  const tanks = row?.counts.repeat ?? 1;
+  return row && tanks > 1 ? { name: row.name, tanks } : undefined;
+};

@@ -322,3 +322,10 @@ test("another basis is told, and kilograms are never compared with liters", () =
   expect(held?.before?.value).toBe(held?.after?.value);
   expect(held?.same).toBe(false);
 });
+
+test("substances sent to single tanks of a row are told by those tanks", () => {
+  const row = (shares: string): string =>
+    `network: Row\nformat: 1\nfeeds: {f: {flow: 1 L/min, to: a}}\ncompartments:\n  a: {kind: junction, to: {row.3: 40 %, row: rest}, sends: {solids: ${shares}}}\n  row: {kind: stirred, volume: 6 L, repeat: 3, to: o}\noutlets: [o]\n`;
+  const [change] = said(diff(row("{row.3: 90 %, row: rest}"), row("{row.3: 80 %, row: rest}")));
+  expect([change.before, change.after]).toEqual(["{row.3: 90 %, row: rest}", "{row.3: 80 %, row: rest}"]);
+});

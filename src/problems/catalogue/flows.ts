@@ -18,6 +18,11 @@ export const flowEntries = {
         recycle ? `: ${value} of what goes on is a share of ${recycle}` : ""
       }`,
   }),
+  "stream-twice": entry<{ name: string; to: string; before: string }>({
+    severity: "error",
+    says: ({ name, to, before }) => `'${name}' sends to '${to}' besides '${before}', which is the same place`,
+    fix: "make one stream of the two; a row is entered at its first tank, a part at its only inlet",
+  }),
   "rest-twice": entry<{ name: string }>({
     severity: "error",
     says: ({ name }) => `\`rest\` stands more than once among the streams out of '${name}'`,

@@ -39,16 +39,20 @@ export const nameEntries = {
     nearest: string | undefined;
     wanted: string;
     known?: readonly string[];
+    /** The row of which it would be a tank. */
+    row?: { readonly name: string; readonly tanks: number } | undefined;
   }>({
     severity: "error",
     says: ({ name, wanted }) => `there is no ${wanted} '${name}'`,
-    fix: ({ nearest, wanted, known = [] }) =>
-      orNearest(
-        nearest,
-        known.length > 0 && known.length <= fewNames
-          ? `what may stand here: ${known.map((k) => `'${k}'`).join(", ")}`
-          : `name a ${wanted} that is declared`,
-      ),
+    fix: ({ nearest, wanted, known = [], row }) =>
+      row
+        ? `the tanks of '${row.name}' are '${row.name}.1' to '${row.name}.${row.tanks}'`
+        : orNearest(
+            nearest,
+            known.length > 0 && known.length <= fewNames
+              ? `what may stand here: ${known.map((k) => `'${k}'`).join(", ")}`
+              : `name a ${wanted} that is declared`,
+          ),
   }),
   "unused-name": entry<{ name: string; role: string }>({
     severity: "warning",
