@@ -17,7 +17,7 @@ export function totals(plant: Plant, balances: readonly Balance[]): string {
     return `The vessel is closed: nothing enters or leaves. Substance: $${all}$ stays what it is, which is the sum of all balances above; where all is mixed, the concentration is that amount over $V$.`;
   }
   const lines = [
-    `Liquid: $${sum(feeds.map((f) => throughFlow(f.name)))} = ${sum(outlets.map((o) => throughFlow(o.name)))}$, that is ${formatQuantity(q, flow, 6)} in and ${formatQuantity(out, flow, 6)} out.`,
+    `${network.basis === "mass" ? "Mass" : "Liquid"}: $${sum(feeds.map((f) => throughFlow(f.name)))} = ${sum(outlets.map((o) => throughFlow(o.name)))}$, that is ${formatQuantity(q, flow, 6)} in and ${formatQuantity(out, flow, 6)} out.`,
     `Substance: $\\frac{d}{dt}\\left(${sum(balances.flatMap(heldIn))}\\right) = ${carried(feeds)} - ${outlets.length > 1 ? `\\left(${carried(outlets)}\\right)` : carried(outlets)}$, which is the sum of all balances above.`,
   ];
   if (q > 0 && out > 0) lines.push(meanTime(plant, q));

@@ -237,3 +237,13 @@ outlets: [out]
   expect(shown("\\text{rest-of-it}$")).toBe("80 %");
   expect(shown("\\text{peclet}_{")).toBe("10");
 });
+
+test("by mass the whole balance is one of mass, not of a liquid", () => {
+  const page = equationsMarkdown(
+    plantOf(
+      "network: P\nformat: 1\nbasis: mass\nfeeds: {powder: {flow: 2 kg/h, to: drum}}\ncompartments: {drum: {kind: stirred, volume: 4 kg, to: out}}\noutlets: [out]\n",
+    ),
+  );
+  expect(page).toContain("Mass: $Q_{\\text{powder}} = Q_{\\text{out}}$, that is 2 kg/h in and 2 kg/h out.");
+  expect(page).not.toContain("Liquid");
+});
