@@ -39,6 +39,8 @@ export interface DirectOptions {
    * matrix alone. Right for balances, whose rows are dominated by it. Default false.
    */
   readonly onDiagonal?: boolean;
+  /** For sparse elimination: the order of columns, where one was found before for this pattern (`minimumDegree`). */
+  readonly order?: Int32Array;
 }
 
 export const defaultTiny = 4 * Number.EPSILON;
@@ -70,6 +72,12 @@ export function measure(
     }
   }
   return true;
+}
+
+/** Whether all entries are finite: what is left of `measure` where no pivot counts as tiny. */
+export function finite(re: Float64Array, im?: Float64Array): boolean {
+  for (let k = 0; k < re.length; k++) if (!(Math.abs(re[k]) < Number.POSITIVE_INFINITY)) return false;
+  return im === undefined || finite(im);
 }
 
 /** The pattern with every entry of an n x n matrix. */

@@ -69,7 +69,11 @@ export function radauCoefficients(stages: 1 | 3 | 5 | 7): RadauCoefficients {
     if (isReal) real = exactRe;
     else pairs.push({ re: exactRe, im: exactIm });
   }
-  const product = (u: number): number => Math.abs(c.reduce((sofar, x) => sofar * (u - x), 1));
+  const product = (u: number): number => {
+    let sofar = 1;
+    for (let j = 0; j < s; j++) sofar *= u - c[j];
+    return Math.abs(sofar);
+  };
   let [largest, nodal] = [0, 0];
   for (let u = 0; u <= 1; u += 1 / 1024) {
     if (u >= c[0]) largest = Math.max(largest, product(u));
@@ -82,9 +86,13 @@ export function radauCoefficients(stages: 1 | 3 | 5 | 7): RadauCoefficients {
 /** Zeros of P_s - P_(s-1) on [0, 1] (Legendre), the last at 1. */
 function radauNodes(s: number): Float64Array {
   const f = (u: number): number => {
-    let [before, here] = [1, 2 * u - 1];
-    if (s === 1) return here - before;
-    for (let k = 1; k < s; k++) [before, here] = [here, ((2 * k + 1) * (2 * u - 1) * here - k * before) / (k + 1)];
+    let before = 1;
+    let here = 2 * u - 1;
+    for (let k = 1; k < s; k++) {
+      const next = ((2 * k + 1) * (2 * u - 1) * here - k * before) / (k + 1);
+      before = here;
+      here = next;
+    }
     return here - before;
   };
   const c = new Float64Array(s);
@@ -121,13 +129,16 @@ function eigenvaluesOfInverse(s: number): { re: number; im: number }[] {
     re: 2 * s * Math.cos((2 * Math.PI * k + 0.7) / s),
     im: 2 * s * Math.sin((2 * Math.PI * k + 0.7) / s),
   }));
-  for (let round = 0; round < 200; round++) {
+  let moving = true;
+  for (let round = 0; moving && round < 200; round++) {
+    moving = false;
     for (const [k, at] of z.entries()) {
       let value = { re: 1, im: 0 };
       for (let j = s - 1; j >= 0; j--) value = plus(times(value, at), { re: q[j] / q[s], im: 0 });
       for (const [m, other] of z.entries())
         if (m !== k) value = over(value, plus(at, { re: -other.re, im: -other.im }));
       z[k] = plus(at, { re: -value.re, im: -value.im });
+      if (Math.hypot(value.re, value.im) > 4 * Number.EPSILON * Math.hypot(at.re, at.im)) moving = true;
     }
   }
   return z.sort((a, b) => Math.abs(a.im) - Math.abs(b.im));

@@ -1,3 +1,4 @@
+import { combine } from "./combine.js";
 import type { RadauCoefficients } from "./radau-coefficients.js";
 import type { StiffProblem } from "./stiff-jacobian.js";
 import type { ShiftedSystems } from "./stiff-linear.js";
@@ -86,8 +87,9 @@ export function radauStep({ size: n, rhs }: StiffProblem, k: RadauCoefficients, 
         }
       } else {
         for (let i = 0; i < s; i++) {
-          evaluate(guess, t + k.c[i] * h, z[i]);
-          for (let m = 0; m < n; m++) z[i][m] -= y[m];
+          const stage = z[i];
+          evaluate(guess, t + k.c[i] * h, stage);
+          for (let m = 0; m < n; m++) stage[m] -= y[m];
         }
         transform(k.tInverse, s, z, w);
         predicted.set(z[s - 1]);
@@ -100,23 +102,30 @@ export function radauStep({ size: n, rhs }: StiffProblem, k: RadauCoefficients, 
       for (let iteration = 1; iteration <= step.mostIterations; iteration++) {
         step.iterations = iteration;
         for (let i = 0; i < s; i++) {
-          for (let m = 0; m < n; m++) at[m] = y[m] + z[i][m];
+          const stage = z[i];
+          for (let m = 0; m < n; m++) at[m] = y[m] + stage[m];
           rhs(t + k.c[i] * h, at, f[i]);
           step.evaluations++;
         }
         transform(k.tInverse, s, f, change);
         const real = k.real / h;
-        for (let m = 0; m < n; m++) change[0][m] -= real * w[0][m];
-        systems.real.solve(change[0]);
+        const first = change[0];
+        const firstW = w[0];
+        for (let m = 0; m < n; m++) first[m] -= real * firstW[m];
+        systems.real.solve(first);
         for (let p = 0; p < k.pairs.length; p++) {
           const re = k.pairs[p].re / h;
           const im = k.pairs[p].im / h;
-          const a = 1 + 2 * p;
+          const [a, b] = [1 + 2 * p, 2 + 2 * p];
+          const changeRe = change[a];
+          const changeIm = change[b];
+          const wRe = w[a];
+          const wIm = w[b];
           for (let m = 0; m < n; m++) {
-            change[a][m] -= re * w[a][m] - im * w[a + 1][m];
-            change[a + 1][m] -= im * w[a][m] + re * w[a + 1][m];
+            changeRe[m] -= re * wRe[m] - im * wIm[m];
+            changeIm[m] -= im * wRe[m] + re * wIm[m];
           }
-          systems.complex[p].solve(change[a], change[a + 1]);
+          systems.complex[p].solve(changeRe, changeIm);
         }
         const size = sizeOf(change, scale);
         if (!(size < Number.POSITIVE_INFINITY)) return "not-finite";
@@ -137,7 +146,11 @@ export function radauStep({ size: n, rhs }: StiffProblem, k: RadauCoefficients, 
           }
         }
         before = Math.max(size, Number.MIN_VALUE);
-        for (let i = 0; i < s; i++) for (let m = 0; m < n; m++) w[i][m] += change[i][m];
+        for (let i = 0; i < s; i++) {
+          const known = w[i];
+          const more = change[i];
+          for (let m = 0; m < n; m++) known[m] += more[m];
+        }
         transform(k.t, s, w, z);
         if (confidence * size <= wanted) return "converged";
       }
@@ -147,10 +160,8 @@ export function radauStep({ size: n, rhs }: StiffProblem, k: RadauCoefficients, 
     error(t, h, y, start, scale, again) {
       const between = interpolationError(h, scale);
       part.fill(0);
-      for (let j = 0; j < s; j++) {
-        const weight = k.error[j] / h;
-        for (let m = 0; m < n; m++) part[m] += weight * z[j][m];
-      }
+      combine(k.error, 0, z, part);
+      for (let m = 0; m < n; m++) part[m] /= h;
       for (let m = 0; m < n; m++) local[m] = part[m] + start[m];
       systems.real.solve(local);
       const size = norm(local, scale);
@@ -174,17 +185,15 @@ export function radauStep({ size: n, rhs }: StiffProblem, k: RadauCoefficients, 
    */
   function interpolationError(h: number, scale: Float64Array): number {
     local.fill(0);
-    for (let j = 0; j < s; j++) {
-      const weight = k.missWithin * k.miss[j];
-      for (let m = 0; m < n; m++) local[m] += weight * z[j][m];
-    }
-    const missed = norm(local, scale);
+    combine(k.miss, 0, z, local);
+    const missed = k.missWithin * norm(local, scale);
     if (predictedFrom === 0 || missed < 1) return missed < 1 ? 0 : missed;
     const end = 1 + h / predictedFrom;
     let back = k.nodal / end;
     for (let j = 0; j < s; j++) back *= h / predictedFrom / (end - k.c[j]);
     back *= h / predictedFrom;
-    for (let m = 0; m < n; m++) local[m] = back * (z[s - 1][m] - predicted[m]);
+    const reached = z[s - 1];
+    for (let m = 0; m < n; m++) local[m] = back * (reached[m] - predicted[m]);
     return Math.min(missed, norm(local, scale));
   }
 }
@@ -192,13 +201,8 @@ export function radauStep({ size: n, rhs }: StiffProblem, k: RadauCoefficients, 
 /** to_i = sum over j of matrix[i, j] from_j. */
 function transform(matrix: Float64Array, s: number, from: readonly Float64Array[], to: readonly Float64Array[]): void {
   for (let i = 0; i < s; i++) {
-    const target = to[i];
-    target.fill(0);
-    for (let j = 0; j < s; j++) {
-      const weight = matrix[i * s + j];
-      const source = from[j];
-      for (let m = 0; m < target.length; m++) target[m] += weight * source[m];
-    }
+    to[i].fill(0);
+    combine(matrix, i * s, from, to[i]);
   }
 }
 

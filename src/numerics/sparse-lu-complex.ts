@@ -2,6 +2,7 @@ import {
   type ComplexLinearSolver,
   type DirectOptions,
   defaultTiny,
+  finite,
   measure,
   type Pattern,
   scales,
@@ -13,7 +14,7 @@ import { choosePivots, enough, type Pivots } from "./sparse-lu-pivots.js";
 /** The complex form of `sparseSolver`; sizes are |re| + |im|. */
 export function sparseComplexSolver(
   pattern: Pattern,
-  { tiny = defaultTiny, onDiagonal = false }: DirectOptions = {},
+  { tiny = defaultTiny, onDiagonal = false, order = minimumDegree(pattern) }: DirectOptions = {},
 ): ComplexLinearSolver {
   const n = pattern.size;
   const scale = scales(n);
@@ -21,7 +22,6 @@ export function sparseComplexSolver(
   const xIm = new Float64Array(n);
   const inverseRe = new Float64Array(n); // of the pivots
   const inverseIm = new Float64Array(n);
-  const order = minimumDegree(pattern);
   const lasting = onDiagonal ? 0 : stale;
   let pivots: Pivots | undefined;
   let factors = room(0, 0);
@@ -83,7 +83,7 @@ export function sparseComplexSolver(
   return {
     size: n,
     factor(re, im) {
-      if (!measure(pattern, re, im, scale)) return false;
+      if (!(tiny > 0 ? measure(pattern, re, im, scale) : finite(re, im))) return false;
       if (pivots && refactor(re, im, pivots)) return true;
       pivots = choosePivots(pattern, order, re, im, scale, tiny, onDiagonal ? 0 : enough);
       if (!pivots) return false;

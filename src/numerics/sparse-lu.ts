@@ -1,4 +1,12 @@
-import { type DirectOptions, defaultTiny, type LinearSolver, measure, type Pattern, scales } from "./linear-solver.js";
+import {
+  type DirectOptions,
+  defaultTiny,
+  finite,
+  type LinearSolver,
+  measure,
+  type Pattern,
+  scales,
+} from "./linear-solver.js";
 import { minimumDegree } from "./ordering.js";
 import { choosePivots, enough, type Pivots } from "./sparse-lu-pivots.js";
 
@@ -12,13 +20,12 @@ export const stale = 1e-3;
  */
 export function sparseSolver(
   pattern: Pattern,
-  { tiny = defaultTiny, onDiagonal = false }: DirectOptions = {},
+  { tiny = defaultTiny, onDiagonal = false, order = minimumDegree(pattern) }: DirectOptions = {},
 ): LinearSolver {
   const n = pattern.size;
   const scale = scales(n);
   const x = new Float64Array(n);
   const diagonal = new Float64Array(n);
-  const order = minimumDegree(pattern);
   const lasting = onDiagonal ? 0 : stale;
   let pivots: Pivots | undefined;
   let factors = { l: new Float64Array(0), u: new Float64Array(0) };
@@ -60,7 +67,7 @@ export function sparseSolver(
   return {
     size: n,
     factor(value) {
-      if (!measure(pattern, value, undefined, scale)) return false;
+      if (!(tiny > 0 ? measure(pattern, value, undefined, scale) : finite(value))) return false;
       if (pivots && refactor(value, pivots)) return true;
       pivots = choosePivots(pattern, order, value, undefined, scale, tiny, onDiagonal ? 0 : enough);
       if (!pivots) return false;

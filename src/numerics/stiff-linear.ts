@@ -3,6 +3,7 @@ import { bandedComplexSolver } from "./banded-lu-complex.js";
 import { denseComplexSolver } from "./complex-lu.js";
 import { denseSolver } from "./dense-lu.js";
 import type { ComplexLinearSolver, LinearSolver, Pattern } from "./linear-solver.js";
+import { minimumDegree } from "./ordering.js";
 import { sparseSolver } from "./sparse-lu.js";
 import { sparseComplexSolver } from "./sparse-lu-complex.js";
 import type { Jacobian } from "./stiff-jacobian.js";
@@ -25,8 +26,9 @@ export interface ShiftedSystems {
 /** @param pairs how many complex systems */
 export function shiftedSystems({ pattern, diagonal }: Jacobian, pairs: number): ShiftedSystems {
   const make = suited(pattern);
-  const real = make.real(pattern, { tiny: 0 });
-  const complex = Array.from({ length: pairs }, () => make.complex(pattern, { tiny: 0 }));
+  const options = make === sparse ? { tiny: 0, order: minimumDegree(pattern) } : { tiny: 0 };
+  const real = make.real(pattern, options);
+  const complex = Array.from({ length: pairs }, () => make.complex(pattern, options));
   const re = new Float64Array(pattern.column.length);
   const im = new Float64Array(pattern.column.length);
   const entries = pattern.column.length;
@@ -43,14 +45,16 @@ export function shiftedSystems({ pattern, diagonal }: Jacobian, pairs: number): 
     work,
     factor(jacobian, shift, shifts, h) {
       for (let k = 0; k < re.length; k++) re[k] = -jacobian.value[k];
-      for (const d of diagonal) re[d] += shift / h;
+      for (let i = 0; i < n; i++) re[diagonal[i]] += shift / h;
       if (!real.factor(re)) return false;
-      for (const [p, solver] of complex.entries()) {
-        for (const d of diagonal) {
-          re[d] = shifts[p].re / h - jacobian.value[d];
-          im[d] = shifts[p].im / h;
+      for (let p = 0; p < pairs; p++) {
+        const shiftRe = shifts[p].re / h;
+        const shiftIm = shifts[p].im / h;
+        for (let i = 0; i < n; i++) {
+          re[diagonal[i]] = shiftRe - jacobian.value[diagonal[i]];
+          im[diagonal[i]] = shiftIm;
         }
-        if (!solver.factor(re, im)) return false;
+        if (!complex[p].factor(re, im)) return false;
       }
       return true;
     },

@@ -1,3 +1,5 @@
+import { combine } from "./combine.js";
+
 /** The polynomial of the last step: what lies between its ends, and a first guess of what comes after. */
 export interface StepPolynomial {
   /** Length of the step; 0 before there is one. */
@@ -40,9 +42,5 @@ export function evaluate(p: StepPolynomial, t: number, y: Float64Array): void {
     weights[j] = weight;
   }
   y.set(p.start);
-  for (let j = 0; j < c.length; j++) {
-    const weight = weights[j];
-    const stage = z[j];
-    for (let i = 0; i < y.length; i++) y[i] += weight * stage[i];
-  }
+  combine(weights, 0, z, y);
 }

@@ -24,7 +24,7 @@ export const p4: Bench = {
       add(out(mode), peers.scipy(`SciPy ${mode}`, "p4_scipy.py", folder, mode, out(mode)));
     }
     yield {
-      title: "stiff start-up",
+      title: "stiff start-up, warm; of ours and the compiled ones the quickest of 20 runs",
       target: "within 3 times CVODE + KLU (a ratio of 0.33), faster than LSODA",
       rounds: 5,
       limit: 60,

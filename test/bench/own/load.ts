@@ -40,3 +40,20 @@ export function repeated<T>(job: () => T, least = 1, budget = 1): { first: numbe
   others.sort((a, b) => a - b);
   return { first, again: others[others.length >> 1] ?? first, result };
 }
+
+/**
+ * Runs a short job until the compiler has seen it often enough, then as often as the compiled peers do.
+ * @returns seconds of the very first run and of the quickest of those that count, as the peers tell theirs
+ */
+export function warmed<T>(job: () => T, unseen: number, counted: number): { first: number; best: number; result: T } {
+  const timed = (): { seconds: number; result: T } => {
+    const began = performance.now();
+    const result = job();
+    return { seconds: (performance.now() - began) / 1000, result };
+  };
+  const { seconds: first, result } = timed();
+  for (let k = 0; k < unseen; k++) job();
+  let best = Number.POSITIVE_INFINITY;
+  for (let k = 0; k < counted; k++) best = Math.min(best, timed().seconds);
+  return { first, best, result };
+}
