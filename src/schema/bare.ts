@@ -7,7 +7,7 @@ const annotations = new Set([...editorKeywords, "title", "description", "example
  * function of its own, so that a run compiles only those that its document meets.
  */
 export function validatorSchema(schema: JsonSchema): JsonSchema {
-  const plain = bare(schema);
+  const plain = inTurn(bare(schema));
   const counts = new Map<string, number>();
   visit(plain, (part) => counts.set(key(part), (counts.get(key(part)) ?? 0) + 1));
   const names = new Map<string, string>();
@@ -26,6 +26,23 @@ const key = (part: JsonSchema): string => JSON.stringify(part);
 
 const bare = (schema: JsonSchema): JsonSchema =>
   mapParts(Object.fromEntries(Object.entries(schema).filter(([keyword]) => !annotations.has(keyword))), bare);
+
+/** Variants that exclude one another are asked in turn, until one is the case, and not each of them. */
+function inTurn(schema: JsonSchema): JsonSchema {
+  const mapped = mapParts(schema, inTurn);
+  const branches = Array.isArray(mapped.allOf) ? (mapped.allOf as JsonSchema[]) : [];
+  if (branches.length < 2 || new Set(branches.map(asksFor)).size < branches.length) return mapped;
+  if (branches.some((branch) => asksFor(branch) === undefined || "else" in branch)) return mapped;
+  const chain = branches.reduceRight((rest, branch) => ({ ...branch, else: rest }));
+  return { ...mapped, allOf: [chain] };
+}
+
+/** The one word at one key that a branch asks for, or undefined where it asks otherwise. */
+function asksFor({ if: asked }: JsonSchema): string | undefined {
+  const properties = asked && isSchema(asked) ? Object.entries(asked.properties ?? {}) : [];
+  const [by, is] = properties[0] ?? [];
+  return properties.length === 1 && isSchema(is) && "const" in is ? `${by} ${is.const}` : undefined;
+}
 
 function visit(schema: JsonSchema, each: (part: JsonSchema) => void): void {
   mapParts(schema, (part) => {
