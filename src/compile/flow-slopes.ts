@@ -1,6 +1,7 @@
 import type { Network } from "../model/network.js";
-import { type Branches, branchesOf, type FlowPlan, solveThrough } from "./flows.js";
+import { branchesOf, type FlowPlan } from "./flows.js";
 import type { SolvedStream } from "./solved-stream.js";
+import { type Branches, solveThrough } from "./through-flows.js";
 import type { ValueSlopes } from "./value-slopes.js";
 
 /** How the steady flows of a network change along a direction in which its names move. */

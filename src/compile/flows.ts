@@ -1,12 +1,12 @@
 import type { ZoneTable } from "../compartments/zone-table.js";
 import { isClosed, type Network, type Stream } from "../model/network.js";
 import { type Adjacency, adjacency, stronglyConnected } from "../numerics/graph.js";
-import { factor, solve } from "../numerics/lu.js";
 import type { Report } from "../problems/report.js";
 import type { Span } from "../text/source.js";
 import { dimensions } from "../units/dimension.js";
 import type { Say } from "./say.js";
 import type { SolvedStream } from "./solved-stream.js";
+import { type Branches, solveThrough } from "./through-flows.js";
 import { zoneFlows } from "./zone-flows.js";
 
 /** Solved steady flows, m3/s. */
@@ -52,12 +52,6 @@ export function flowPlan(network: Network): FlowPlan {
   });
   const groups = stronglyConnected({ size, from, to });
   return { places, streams, from, to, groups, into: adjacency(size, to), dividing };
-}
-
-/** Every stream as a linear function of its source's through-flow: share * through + fixed. */
-export interface Branches {
-  readonly share: Float64Array;
-  readonly fixed: Float64Array;
 }
 
 /**
@@ -207,62 +201,6 @@ export function branchesOf({ streams, dividing }: FlowPlan, env: Float64Array): 
     }
   }
   return { share, fixed };
-}
-
-/** Through-flows for what is supplied to each place, or the places of a circle whose flow cannot be told. */
-export function solveThrough(
-  { places, from, groups, into }: FlowPlan,
-  { share, fixed }: Branches,
-  supply: Float64Array,
-): { through: Float64Array } | { stuck: Int32Array } {
-  const through = new Float64Array(places.length);
-  const local = new Int32Array(places.length).fill(-1);
-  for (const group of groups) {
-    const n = group.length;
-    if (n === 1 && !returnsTo(group[0], from, into)) {
-      const node = group[0];
-      let sum = supply[node];
-      for (let e = into.start[node]; e < into.start[node + 1]; e++) {
-        const k = into.edges[e];
-        sum += share[k] * through[from[k]];
-        sum += fixed[k];
-      }
-      through[node] = sum;
-      continue;
-    }
-    const matrix = new Float64Array(n * n);
-    const rhs = new Float64Array(n);
-    for (let i = 0; i < n; i++) local[group[i]] = i;
-    for (let i = 0; i < n; i++) {
-      const node = group[i];
-      matrix[i * n + i] += 1;
-      rhs[i] = supply[node];
-      for (let e = into.start[node]; e < into.start[node + 1]; e++) {
-        const k = into.edges[e];
-        const j = local[from[k]];
-        if (j < 0) rhs[i] += share[k] * through[from[k]];
-        else matrix[i * n + j] -= share[k];
-        rhs[i] += fixed[k];
-      }
-    }
-    for (let i = 0; i < n; i++) local[group[i]] = -1;
-    if (n > 1 || matrix[0] !== 1) {
-      const lu = factor(matrix, n);
-      if (lu === "singular") return { stuck: group };
-      solve(lu, rhs);
-      if (!rhs.every(Number.isFinite)) return { stuck: group };
-    }
-    group.forEach((node, i) => {
-      through[node] = rhs[i];
-    });
-  }
-  return { through };
-}
-
-/** Does a stream lead from a place back to itself? */
-function returnsTo(node: number, from: Int32Array, { start, edges }: Adjacency): boolean {
-  for (let e = start[node]; e < start[node + 1]; e++) if (from[edges[e]] === node) return true;
-  return false;
 }
 
 /** No `rest` is below zero. Where less than nothing arrives, the fault lies upstream and is told there. */

@@ -49,6 +49,7 @@ describe("the same network by mass, at a density of 1 kg/L", () => {
   const inLiters = (text: string): string =>
     text
       .replace(/hold-up/g, "volume")
+      .replace(/\bMass:/g, "Liquid:")
       .replace(/\bkg\b/g, "L")
       .replace(/basis:? `?mass`?\n/g, "");
 
