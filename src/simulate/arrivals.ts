@@ -59,7 +59,8 @@ export function arrivals(
   drive: Drive,
   horizon: number,
 ): Arrivals {
-  return new Finder(net, course, entry, drive, horizon).find();
+  // What arrives at the horizon but for rounding has arrived, here as where spikes are counted.
+  return new Finder(net, course, entry, drive, horizon * (1 + 2 * apart)).find();
 }
 
 class Finder {

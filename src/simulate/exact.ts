@@ -6,8 +6,10 @@ import { seriesStepper } from "./series-stepper.js";
 import { squaringStepper } from "./squaring-stepper.js";
 import type { Stepper } from "./stepper.js";
 
-/** Work (rates times span times entries) above which a small system is stepped by squaring instead. */
-const muchWork = 3e8;
+/** What a product with a sparse matrix takes beside its entries, in entries; how many products a mean change of contents takes. */
+const [perProduct, productsPerTurn] = [30, 3];
+/** Curves have some hundred times, and each has its dense step; setting up those of a long log takes about so many entries. */
+const [usualTimes, settingUp] = [400, 2e7];
 const fewStates = 120;
 /** A detector this much faster than the vessel is filtered in closed form; a slower one is one more state. */
 const muchFaster = 2.5;
@@ -21,7 +23,7 @@ export const exact: TracerEngine = {
   run(asked, drive, wanted) {
     const end = lastTime(wanted);
     const own = largestRate(asked.rates);
-    const stiff = own * end * asked.rates.value.length > muchWork && asked.input.length <= fewStates;
+    const stiff = isStiff(asked.rates, own * end);
     const { system, queries } = lagsAsStates(asked, wanted, (lag) => stiff || 1 / lag < muchFaster * own);
     const n = system.input.length;
     const matrix = drive.times.length > 0 ? augmented(system) : system.rates;
@@ -52,6 +54,16 @@ export const exact: TracerEngine = {
     return { answers: readers.map((r) => r.answer), stopped: undefined };
   },
 };
+
+/**
+ * Do so few states turn over so often that dense steps, doubled until they are long enough, cost less than products one
+ * after another? By the network and the span alone, so that how many times are asked does not decide how one is found.
+ */
+function isStiff({ size, value }: SparseRows, turns: number): boolean {
+  if (size > fewStates || turns < 1) return false;
+  const products = productsPerTurn * turns * (value.length + perProduct);
+  return products > settingUp + usualTimes * Math.log2(turns) * 2 * size ** 3;
+}
 
 /** Reads one query off the steps as they come. Its lag, where it has one, is carried in closed form. */
 class Reader {

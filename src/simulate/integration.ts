@@ -180,7 +180,7 @@ export class Integration implements Surroundings {
       else sum += this.passed((u) => q(u) * this.entered(node, u), node, then, t);
     }
     for (const { entered, left, amount } of this.arrivals.travelling)
-      if (entered <= t && left > t * (1 + 2e-12)) sum += amount;
+      if (entered <= t * (1 + 2e-12) && left > t * (1 + 2e-12)) sum += amount;
     return sum;
   }
 
