@@ -1,7 +1,8 @@
 import { Part, type Plant } from "../compile/plant.js";
 import { type Adjacency, adjacency } from "../numerics/graph.js";
 import { bodyAt } from "./bodies.js";
-import { type Circle, solveCircle } from "./circle.js";
+import { solveCircle } from "./circle.js";
+import type { Circle } from "./circle-start.js";
 import type { Conditions } from "./conditions.js";
 import { type Conserved, conservedBy } from "./conserved.js";
 import type { Pass } from "./dispersion.js";
