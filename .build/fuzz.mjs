@@ -33,7 +33,7 @@ if (![minutes, seed, only ?? 0].every((x) => Number.isFinite(x) && x >= 0)) {
 if (values.networks !== undefined) {
   const vitest = join(root, "node_modules/vitest/vitest.mjs");
   const env = { ...process.env, BACKMIX_NETWORKS: values.networks, BACKMIX_SEED: values.seed };
-  const args = [vitest, "run", "test/simulate/random.test.ts"];
+  const args = [vitest, "run", "test/simulate/random-"];
   process.exit(spawnSync(process.execPath, args, { cwd: root, env, stdio: "inherit" }).status ?? 1);
 }
 

@@ -97,7 +97,7 @@ export function radauIntegrator(given: StiffProblem, relative: number, stages = 
     last.h = 0;
     let fresh = false; // the Jacobian belongs to this very state
     let stale = true; // and should
-    let factored = false;
+    let factoredFor = Number.NaN; // the step that the factors belong to
     let noise = 0;
     let gapSeen = false;
     let again = true; // the first step, or after a rejection
@@ -105,20 +105,16 @@ export function radauIntegrator(given: StiffProblem, relative: number, stages = 
       counts.rejected++;
       again = true;
       h *= part;
-      factored = false;
     };
     for (;;) {
       const longest = p.longest ? p.longest(t) : Number.POSITIVE_INFINITY;
       if (Math.abs(h) > longest) {
-        h = direction * longest;
-        factored = false;
+        const kept = Math.abs(factoredFor);
+        h = kept <= longest && smallGrowth * kept > longest && !stale ? factoredFor : direction * longest;
       }
       const left = p.to - t;
       const ending = Math.abs(h) * 1.01 >= Math.abs(left);
-      if (ending && h !== left) {
-        h = left;
-        factored = false;
-      }
+      if (ending) h = left;
       if (Math.abs(h) <= 8 * Number.EPSILON * Math.max(Math.abs(t), 1e-290) && !ending)
         return finish({ halt: gapSeen ? "not-finite" : "step-too-small" });
       if (stale && !fresh) {
@@ -126,12 +122,13 @@ export function radauIntegrator(given: StiffProblem, relative: number, stages = 
         counts.jacobians++;
         counts.rhs += jacobian.cost;
         fresh = true;
-        factored = false;
+        factoredFor = Number.NaN;
       }
       stale = false;
-      if (!factored) {
+      if (factoredFor !== h) {
         counts.factorizations++;
-        factored = systems.factor(jacobian, coefficients.real, coefficients.pairs, h);
+        const factored = systems.factor(jacobian, coefficients.real, coefficients.pairs, h);
+        factoredFor = factored ? h : Number.NaN;
         if (!factored) {
           if (!allFinite(jacobian.value)) gapSeen = true;
           shorten(0.5);
@@ -188,10 +185,7 @@ export function radauIntegrator(given: StiffProblem, relative: number, stages = 
       again = false;
       fresh = false;
       stale = method.contraction > goodContraction;
-      if (stale || grown < 1 || grown > smallGrowth) {
-        h *= grown;
-        factored = false;
-      }
+      if (stale || grown < 1 || grown > smallGrowth) h *= grown;
       if (counts.steps >= p.maxSteps) return finish({ halt: "too-many-steps" });
       if (p.budget !== undefined && work() >= p.budget) return finish({ paused: true });
     }

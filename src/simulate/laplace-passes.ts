@@ -1,5 +1,6 @@
 import type { Plant } from "../compile/plant.js";
 import { isClosed } from "../model/network.js";
+import { type Complex, complex } from "../numerics/complex.js";
 import { type Adjacency, adjacency } from "../numerics/graph.js";
 import { NodeEquations } from "../transfer/node-equations.js";
 import type { Entry } from "./entry.js";
@@ -43,14 +44,17 @@ const mostCopies = 10_000;
 /**
  * Sorts tracer by the delay it has passed: one copy of the network per total delay, delayed nodes cut open.
  * @param horizon s; what comes later is left out
- * @param budget  copies to make before the rest, once nothing undispersed is in it, is left in one piece
+ * @param rough   part of the tracer: on its way through a delay, what is not less than this at `height` is taken apart, and so is
+ *                what is undispersed; the others make the rest
+ * @param height  1/s, far from 0: where smooth tracer has died out
  */
 export function passes(
   plant: Plant,
   passing: readonly Passing[],
   entry: Entry,
   horizon: number,
-  budget: number,
+  rough: number,
+  height: Complex,
 ): Passes {
   const n = passing.length;
   const into = adjacency(n, plant.to);
@@ -60,13 +64,19 @@ export function passes(
   let slots = 0;
   const slotDirect: number[] = [];
   const slotSmooth: number[] = [];
+  const rest: Seed[] = [];
+  const spread = spreading(plant, passing, into, height);
   const waiting: { delay: number; seeds: Seed[] }[] = [{ delay: 0, seeds: [] }];
   while (waiting.length > 0) {
-    const open = waiting.flatMap(({ seeds }) => seeds);
-    const undispersed = open.some(({ slot, node }) => slotDirect[slot] * plant.nodes[node].inflow > smallest);
-    if (copies.length >= budget && !undispersed) return { copies, rest: open, slots, truncated: false };
-    if (copies.length >= mostCopies) return { copies, rest: [], slots, truncated: true };
-    const { delay, seeds } = waiting.shift() as (typeof waiting)[number];
+    if (copies.length >= mostCopies) return { copies, rest, slots, truncated: true };
+    const { delay, seeds: all } = waiting.shift() as (typeof waiting)[number];
+    const seeds: Seed[] = [];
+    for (const seed of all) {
+      const through = plant.nodes[seed.node].inflow;
+      const split = slotDirect[seed.slot] * through > smallest || spread.size(seed.slot) * through >= rough;
+      (split ? seeds : rest).push(seed);
+    }
+    if (copies.length > 0 && seeds.length === 0) continue;
     const put = copies.length === 0 ? putIn(plant.columns.inflow, entry) : [];
     const direct = new Float64Array(n);
     const smooth = new Float64Array(n);
@@ -82,6 +92,7 @@ export function passes(
     for (const { node, slot } of seeds) smooth[node] += slotSmooth[slot];
     equations.all(smooth);
     const enteringSmooth = entering(plant, into, smooth);
+    spread.copy(seeds, enteringDirect);
     const exits: { node: number; slot: number | undefined }[] = [];
     for (const node of late) {
       const through = (enteringDirect[node] + enteringSmooth[node]) * plant.nodes[node].inflow;
@@ -100,11 +111,52 @@ export function passes(
       exits.push({ node, slot: seed.slot });
       const { direct: share } = passing[node];
       slotDirect[seed.slot] += enteringDirect[node] * share;
+      spread.leave(node, seed.slot, enteringDirect[node]);
       slotSmooth[seed.slot] += enteringSmooth[node] + enteringDirect[node] * (1 - share);
     }
     copies.push({ delay, seeds, exits, direct, enteringDirect, smooth });
   }
-  return { copies, rest: [], slots, truncated: false };
+  return { copies, rest, slots, truncated: false };
+}
+
+/** What the dispersed part of every slot is at one s, found along with the copies. */
+function spreading(plant: Plant, passing: readonly Passing[], into: Adjacency, s: Complex) {
+  const n = passing.length;
+  const gains = passing.map((p) => p.spread(s));
+  const equations = new NodeEquations(plant);
+  for (let i = 0; i < n; i++) {
+    equations.gainRe[i] = passing[i].delay > 0 ? 0 : gains[i].re + passing[i].direct;
+    equations.gainIm[i] = passing[i].delay > 0 ? 0 : gains[i].im;
+  }
+  equations.factor();
+  const slots: Complex[] = [];
+  let enterRe: Float64Array = new Float64Array(n);
+  let enterIm: Float64Array = new Float64Array(n);
+  return {
+    size: (slot: number): number => complex.size(slots[slot] ?? complex.of(0)),
+    copy(seeds: readonly Seed[], enteringDirect: Float64Array): void {
+      const [re, im] = [new Float64Array(n), new Float64Array(n)];
+      for (let i = 0; i < n; i++) {
+        if (passing[i].delay > 0) continue;
+        re[i] = gains[i].re * enteringDirect[i];
+        im[i] = gains[i].im * enteringDirect[i];
+      }
+      for (const { node, slot } of seeds) {
+        re[node] += slots[slot].re;
+        im[node] += slots[slot].im;
+      }
+      equations.solve(re, im);
+      enterRe = entering(plant, into, re);
+      enterIm = entering(plant, into, im);
+    },
+    /** What leaves a delayed node by a slot, from what the copy brings to it. */
+    leave(node: number, slot: number, direct: number): void {
+      const mean = { re: enterRe[node], im: enterIm[node] };
+      const gain = { re: gains[node].re + passing[node].direct, im: gains[node].im };
+      const through = complex.add(complex.multiply(gain, mean), complex.scale(gains[node], direct));
+      slots[slot] = complex.add(slots[slot] ?? complex.of(0), through);
+    },
+  };
 }
 
 /** The seed of a node at a time, made where there is none; equal times are one. */

@@ -39,7 +39,8 @@ export function transformsOf(
   const n = nodes.length;
   const into = adjacency(n, plant.to);
   const cut = new NodeEquations(plant);
-  const whole = rest.length > 0 ? new NodeEquations(plant) : undefined;
+  // Only where the rest is read: its delays would leave the copies without a bound.
+  const whole = parts.some(({ copy }) => copy === copies.length) ? new NodeEquations(plant) : undefined;
   const [slotRe, slotIm] = [new Float64Array(slots), new Float64Array(slots)];
   const [cRe, cIm] = [new Float64Array(n), new Float64Array(n)];
   const [spreadRe, spreadIm] = [new Float64Array(n), new Float64Array(n)];

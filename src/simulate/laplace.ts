@@ -13,8 +13,13 @@ import { putIn } from "./moments.js";
 import type { Balance, Seen } from "./respond.js";
 import type { NodeLook, TracerWay, Tracing } from "./tracing.js";
 
-/** Copies taken out of a loop before its rest is tried in one piece; then four times as many, and so on. */
-const firstBudget = 1;
+/**
+ * Parts of the tracer: what delays have less of, so far from s = 0, is smooth enough to be left in one piece behind the copies.
+ * Where that piece cannot be inverted, the next; the last leaves nothing.
+ */
+const roughness = [Number.POSITIVE_INFINITY, 1e-6, 1e-8, 1e-10, 1e-12, 1e-14, 1e-16, 1e-20, 0];
+/** In 1 over mean times: the height. */
+const high = 2_000;
 
 /**
  * Transfer functions brought back to time: exact for every kind of body. Delays are taken out first, so that spikes and jumps
@@ -39,7 +44,7 @@ export function laplaceTracing(plant: Plant, entry: Entry, horizon: number): Lap
 class LaplaceTracing implements Tracing {
   private readonly passing: readonly Passing[];
   private sorted: Passes;
-  private budget = firstBudget;
+  private level = 0;
   /** Integral over all time of what leaves a node; in a closed vessel, where it has none, over the unit of time at the mean level. */
   private readonly doses: Float64Array;
 
@@ -92,7 +97,10 @@ class LaplaceTracing implements Tracing {
   }
 
   private sort(): Passes {
-    return passes(this.plant, this.passing, this.entry, this.horizon, this.budget);
+    return passes(this.plant, this.passing, this.entry, this.horizon, roughness[this.level], {
+      re: 2 / this.unit,
+      im: high / this.unit,
+    });
   }
 
   private curves(drive: Drive, curves: readonly Curve[]): { seen: Seen[]; stopped: string | undefined } {
@@ -120,7 +128,7 @@ class LaplaceTracing implements Tracing {
       const parts = { plant, unit, passing, doses, sorted };
       const seen = start();
       if (sorted.rest.length > 0 && !addParts(parts, seen, drive, curves, true, known).settled) {
-        this.budget = 4 * Math.max(this.budget, sorted.copies.length);
+        this.level++;
         this.sorted = this.sort();
         continue;
       }

@@ -11,6 +11,8 @@ const stages = 7;
 const basis = stepBasis(radauCoefficients(stages).c);
 /** What is remembered of loops may be off by as many tolerances. */
 const remembered = 10;
+/** Of the time: over so short a step, what comes out of a loop's delay is known only as well as `History` tells times apart. */
+const finest = 1e-11;
 /** Parts of a step at which it is tried. */
 const tried = [basis.places[1] / 2, (basis.places[3] + basis.places[4]) / 2, (basis.places[6] + basis.places[7]) / 2];
 /** First step, in mean times. */
@@ -83,6 +85,7 @@ export function runStage(stage: Stage, ask: StageAsk, given: (answer: StageAnswe
   };
   const judge = (t: number, h: number, y: Float64Array, z: readonly Float64Array[]): number => {
     look(t, h, y, z);
+    if (h < finest * t) return 0;
     let worst = 0;
     for (const part of tried) {
       basis.weigh(part, weights);
