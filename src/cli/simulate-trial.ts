@@ -10,7 +10,7 @@ import { collector } from "../problems/report.js";
 import { plannedIn } from "../resolve/planned.js";
 import { moments } from "../simulate/moments.js";
 import { settlingTime } from "../simulate/tracer.js";
-import { trialResponse } from "../simulate/trial.js";
+import { followTrial } from "../simulate/trial.js";
 import { formatNumber, formatQuantity } from "../units/format.js";
 import { inUnit, type Unit } from "../units/unit.js";
 import type { Context } from "./context.js";
@@ -45,10 +45,10 @@ export function simulateTrial(network: Network, options: SimulateOptions, { inpu
   const wanted = trial.readings.map(() => ({ time: clock.si.map((t) => t + origin) }));
   const varying = (trial.flowLogs?.size ?? 0) > 0 && options.engine === "auto";
   const engine = engineNamed(varying ? "ode" : options.engine, plant, clock.si[clock.si.length - 1]);
-  const curves = trialResponse(plant, trial, wanted, engine);
+  const { curves, stopped } = followTrial(plant, trial, wanted, engine);
   const beside = engineBeside(engine, plant);
-  const other = options.verify ? trialResponse(plant, trial, wanted, beside) : undefined;
-  const difference = other && largestDifference(curves, other);
+  const other = options.verify ? followTrial(plant, trial, wanted, beside) : undefined;
+  const difference = other && largestDifference(curves, other.curves);
   const until = origin + clock.si[clock.si.length - 1];
   const balance = trialBalance(plant, trial, until, engine);
   const spikes = trial.readings.map((r) => trialSpikes(plant, trial, r, until));
@@ -71,7 +71,8 @@ export function simulateTrial(network: Network, options: SimulateOptions, { inpu
       curvesCsv(rows, { time: clock.unit.name, value: unit, spike: `${unit} ${clock.unit.name}` }),
     );
   }
-  const failed = curves.some((c) => c.some(Number.isNaN));
+  const why = stopped ?? other?.stopped;
+  const failed = why !== undefined || curves.some((c) => c.some(Number.isNaN));
   return {
     status: failed ? 3 : 0,
     text: blocks(
@@ -110,9 +111,12 @@ export function simulateTrial(network: Network, options: SimulateOptions, { inpu
       ...(difference === undefined
         ? {}
         : { verify: { engines: [engine.name, beside.name], largestDifference: pure(difference).value } }),
+      ...(why === undefined ? {} : { stopped: why }),
       ...(options.output === undefined ? {} : { written: options.output }),
     },
-    notes: failed ? ["not converged: the integrator gave up; points without a value are left empty"] : [],
+    notes: failed
+      ? [`not converged: ${why ?? "some points have no value"}; points without a value are left empty`]
+      : [],
   };
 }
 

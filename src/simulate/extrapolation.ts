@@ -1,6 +1,7 @@
 import { integrate } from "../numerics/integrate.js";
 import type { Pattern } from "../numerics/linear-solver.js";
 import { multiply, type SparseRows } from "../numerics/sparse.js";
+import { haltSaid } from "./halts.js";
 import { lagsAsStates } from "./lags.js";
 import { type Answer, driveAt, type TracerEngine } from "./linear-system.js";
 
@@ -62,7 +63,7 @@ export const extrapolation: TracerEngine = {
       return answer;
     });
     const { end: how } = solved;
-    const stopped = how === "reached" ? undefined : `the integrator stopped at ${how.stopped} s (${how.why})`;
+    const stopped = how === "reached" ? undefined : haltSaid(how.stopped, how.why, "");
     return { answers, stopped };
   },
 };

@@ -1,3 +1,4 @@
+import type { Halt } from "../numerics/odex.js";
 import { quadrature } from "../numerics/quadrature.js";
 import { radauIntegrator } from "../numerics/stiff.js";
 import { type Arrivals, arrivals } from "./arrivals.js";
@@ -42,7 +43,7 @@ export class Integration implements Surroundings {
   private readonly answers: StageAnswer[] = [];
   private readonly stages: Stage[] = [];
   private readonly mixings = new Map<number, { mixing: Mixing; values: Float64Array }>();
-  readonly stopped: { stage: number; t: number; why: string; node: string } | undefined;
+  readonly stopped: { stage: number; t: number; why: Halt; node: string } | undefined;
   readonly steps: number = 0;
 
   /** @param looks nodes whose outflow will be asked for, up to `horizon` s */

@@ -5,6 +5,7 @@ import { arrivals } from "./arrivals.js";
 import { partsOf } from "./entry.js";
 import { extrapolation } from "./extrapolation.js";
 import { type FlowCourse, steadyCourse } from "./flow-course.js";
+import { haltSaid } from "./halts.js";
 import { integrable } from "./integrable.js";
 import { Integration, type Put } from "./integration.js";
 import { type Drive, instant } from "./linear-system.js";
@@ -73,13 +74,14 @@ export function integrate(plant: Plant, course: FlowCourse, horizon: number, put
       const { stopped } = run;
       return {
         seen,
-        stopped: stopped && `the integrator stopped at ${stopped.t} s (${stopped.why}), in ${stopped.node}`,
+        stopped: stopped && haltSaid(stopped.t, stopped.why, stopped.node),
       };
     },
     balance(drive, until) {
       const run = runOf(drive, []);
-      const left = outlets.reduce((sum, node) => sum + run.left(node, until), 0);
-      const inside = run.inside();
+      const known = run.stopped && run.stopped.t < until ? Number.NaN : 1;
+      const left = known * outlets.reduce((sum, node) => sum + run.left(node, until), 0);
+      const inside = known * run.inside();
       const injected = run.injected(until);
       const recovered = left + inside;
       return {

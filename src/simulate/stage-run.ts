@@ -1,3 +1,4 @@
+import type { Halt } from "../numerics/odex.js";
 import { radauCoefficients } from "../numerics/radau-coefficients.js";
 import { radauIntegrator, type StiffStretch } from "../numerics/stiff.js";
 import type { Kick } from "./arrivals.js";
@@ -47,7 +48,7 @@ export interface StageAnswer {
   readonly snapshot: Float64Array | undefined;
   readonly steps: number;
   /** Where it stopped too soon, why, and the node that changed fastest there. */
-  readonly stopped: { readonly t: number; readonly why: string; readonly node: number } | undefined;
+  readonly stopped: { readonly t: number; readonly why: Halt; readonly node: number } | undefined;
 }
 
 /** Integrates a stage and remembers what others will ask of it; `history` is given out before it is full. */

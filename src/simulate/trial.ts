@@ -20,6 +20,16 @@ export function trialResponse(
   wanted: readonly { readonly time: Float64Array }[],
   engine?: AnyEngine,
 ): Float64Array[] {
+  return followTrial(liquid, trial, wanted, engine).curves;
+}
+
+/** The same, and where and when an engine gave up, if it did: what comes later is NaN. */
+export function followTrial(
+  liquid: Plant,
+  trial: Trial,
+  wanted: readonly { readonly time: Float64Array }[],
+  engine?: AnyEngine,
+): TrialCurves {
   const plant = tracerPlant(liquid, trial.tracer);
   const single = trial.readings.every((r) => r.places.length === 1);
   if (single) return seenSingly(plant, liquid, trial, wanted, engine);
@@ -28,12 +38,19 @@ export function trialResponse(
   );
   const readings = parts.map(({ reading }) => reading);
   const times = parts.map(({ i }) => wanted[i]);
-  const curves = seenSingly(plant, liquid, { ...trial, readings }, times, engine);
+  const { curves, stopped } = seenSingly(plant, liquid, { ...trial, readings }, times, engine);
   const sums = wanted.map(({ time }) => new Float64Array(time.length));
   parts.forEach(({ i, share }, p) => {
     for (let k = 0; k < sums[i].length; k++) sums[i][k] += share * curves[p][k];
   });
-  return sums;
+  return { curves: sums, stopped };
+}
+
+export interface TrialCurves {
+  /** One array per reading, as long as its times. */
+  readonly curves: Float64Array[];
+  /** Where and when, in words; undefined where all was reached. */
+  readonly stopped: string | undefined;
 }
 
 /** The same where every reading draws from one place, `at`; the liquid's plant tells flows, the tracer's all else. */
@@ -43,9 +60,10 @@ function seenSingly(
   trial: Trial,
   wanted: readonly { readonly time: Float64Array }[],
   engine?: AnyEngine,
-): Float64Array[] {
+): TrialCurves {
   const sums = wanted.map(({ time }) => new Float64Array(time.length));
   const last = wanted.reduce((m, { time }) => Math.max(m, time[time.length - 1] ?? 0), 0);
+  let stopped: string | undefined;
   const decay = trial.tracer?.decay ?? 0;
   for (const put of putsOf(plant, trial, liquid)) {
     const own = wanted.map(({ time }) => new Float64Array(time.length));
@@ -61,14 +79,15 @@ function seenSingly(
       const times = wanted[i].time.map((t) => Math.max(t - delay, from) - put.start);
       return { node, times, lag, integral: false };
     });
-    const { seen } = tracing.see(put.drive, looks);
+    const { seen, stopped: why } = tracing.see(put.drive, looks);
+    stopped ??= why;
     if (put.begins !== undefined) addSettled(own, tracing, put, seenAt, wanted);
     seen.forEach((s, i) => {
       const left = (t: number): number => (decay === 0 ? 1 : Math.exp(-decay * (t - (put.begins ?? put.start))));
       for (let k = 0; k < s.value.length; k++) sums[i][k] += left(wanted[i].time[k]) * (own[i][k] + s.value[k]);
     });
   }
-  return sums;
+  return { curves: sums, stopped };
 }
 
 /** How a reading sees the vessel: the node, and the sample line and detector before it, s. */
