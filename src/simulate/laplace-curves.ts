@@ -13,13 +13,15 @@ const trialWork = 1_500_000;
 /** The same where there is no other way. */
 const mostNodes = 400_000;
 const mostWork = 3_000_000;
-/** In mean times: what is asked at the very moment of a jump is the value this soon after it; a slope in time, this soon. */
+/** In mean times: what is asked at the very moment of a jump is told by what it is this soon after it; a slope in time, this soon. */
 const soon = 4 ** -50;
 const soonSlope = 4 ** -10;
 /** Two node counts of a derivative; a fit needs no more of it. */
 const slopeAgreement = 1e-8;
 /** 1 over mean times: where a transform shows how a curve begins. */
 const beginning = 1e16;
+/** Ever farther out, evenly: where a transform shows what a curve begins with, also one that begins as a small power of time. */
+const farthest = [1e100, 1e120, 1e140] as const;
 /** The same where it shows how large a curve is. */
 const middles = [0.1, 0.5, 2, 8] as const;
 
@@ -82,6 +84,7 @@ export function addParts(
   const late = impulses.some(({ power }) => power === 0) && delays.some((d) => d.some((x) => x !== 0));
   const transforms = late ? withSlopes(bare, channels.length, beginning / unit) : bare;
   const sizes = moves.length > 0 ? sizesOf(bare, channels, curveOf, unit) : undefined;
+  const begun = begins(bare, channels.length, unit);
   const wanted: Wanted[] = [];
   const add: ((values: Float64Array) => void)[] = [];
   channels.forEach(({ copy, node, lag }, p) => {
@@ -107,7 +110,8 @@ export function addParts(
         });
         add.push((values) => {
           due.forEach((i, k) => {
-            take(i, factor * values[k]);
+            const first = group === 0 && order === 0 && after[i] <= soon * unit ? begun()[transform] : undefined;
+            take(i, factor * (first ?? values[k]));
           });
         });
       };
@@ -187,6 +191,31 @@ function withSlopes(of: Transforms, parts: number, large: number): Transforms {
           },
         }
       : {}),
+  };
+}
+
+/**
+ * What the first transforms begin with in time, lim s G, found once when asked for: Aitken's extrapolation of three values is exact
+ * where s G falls as a power of s. Undefined where a body cannot tell so far out.
+ */
+function begins(of: Transforms, parts: number, unit: number): () => readonly (number | undefined)[] {
+  let known: (number | undefined)[] | undefined;
+  return () => {
+    if (known) return known;
+    const [a, b, c] = farthest.map((s) => {
+      const [re, im] = [new Float64Array(of.count), new Float64Array(of.count)];
+      of.at(s / unit, 0, re, im);
+      return re.map((g) => (s / unit) * g);
+    });
+    known = Array.from({ length: parts }, (_, p) => {
+      const [before, last] = [b[p] - a[p], c[p] - b[p]];
+      const ratio = last / before;
+      const more = Math.abs(last) > 1e-12 * Math.abs(c[p]) && ratio > 0 && ratio < 1 ? last / (1 / ratio - 1) : 0;
+      const start = c[p] + more;
+      if (!Number.isFinite(start)) return undefined;
+      return Math.abs(start) > 1e-12 * Math.abs(a[p]) ? start : 0; // what is left of nothing is rounding
+    });
+    return known;
   };
 }
 

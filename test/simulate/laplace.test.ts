@@ -144,3 +144,18 @@ test.each([
   });
   expect(b.stopped).toBeUndefined();
 });
+
+test.each([1.001, 1.01, 1.1, 1.27, 2.5])(
+  "a cascade of %f tanks begins with nothing, one of a tank with 1/tau",
+  (tanks) => {
+    const first = (body: string): number => {
+      const plant = plantOf(
+        `network: T\nformat: 1\nfeeds: {feed: {flow: 1 m3/s, to: {a: 50 %, b: rest}}}\ncompartments:\n  a: {kind: cascade, volume: 2 m3, tanks: ${tanks}, to: out}\n  b: {kind: ${body}, to: out}\noutlets: [out]\n`,
+      );
+      return tracerResponse(plant, { at: "feed", form: "pulse" }, [0, 1], { engine: laplace }).readings[0].value[0];
+    };
+    expect(Math.abs(first(`cascade, volume: 2 m3, tanks: ${tanks}`))).toBeLessThan(1e-10);
+    expect(Math.abs(first("cascade, volume: 2 m3, tanks: 1") - 1 / 8)).toBeLessThan(1e-9);
+    expect(Math.abs(first("stirred, volume: 2 m3") - 1 / 8)).toBeLessThan(1e-9);
+  },
+);
