@@ -73,6 +73,7 @@ export class Integration implements Surroundings {
         unit,
         scale,
         until: horizon + (stages - s) * unit * longestStep * 1.02,
+        loop,
         longest: this.pace(s, stage, Math.min(unit * longestStep, 0.98 * loop), unit),
         breaks: this.arrivals.breaks[s],
         kicks: this.arrivals.kicks.filter((k) => numbers.has(k.node)),

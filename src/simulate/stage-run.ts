@@ -27,6 +27,8 @@ export interface StageAsk {
   readonly scale: number;
   /** How far to go, s. */
   readonly until: number;
+  /** Shortest delay of a tube in a loop, s, which no step may outlast; Infinity without. */
+  readonly loop: number;
   /** How long a step from t may be at most, s. */
   readonly longest: (t: number) => number;
   readonly breaks: Float64Array;
@@ -143,6 +145,11 @@ export function runStage(stage: Stage, ask: StageAsk, given: (answer: StageAnswe
   const stops = [...ask.breaks].filter((t) => t > 0 && t < far);
   stops.push(far);
   const slotOf = new Map(held.map((h, i) => [h.node, i]));
+  // Steps through a loop of tubes are never longer than its delay: what cannot end is not begun.
+  if (ask.until > mostSteps * ask.loop) {
+    answer.stopped = { t: 0, why: "too-many-steps", node: 0 };
+    return answer;
+  }
   let kick = 0;
   const near = (t: number): number => t + 1e-12 * t;
   for (const end of stops) {

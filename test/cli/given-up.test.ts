@@ -42,3 +42,18 @@ test.each([
   expect(text).toMatch(/"value":\{[^}]*null,null,null/);
   expect(text).not.toMatch(/NaN|Infinity/);
 });
+
+test("a loop of tubes far too quick for the time asked is not begun", async () => {
+  const quick = `network: A tank and a quick loop
+format: 1
+feeds: {feed: {flow: 1 L/min, to: tank}}
+outlets: [product]
+compartments:
+  tank: {kind: stirred, volume: 100 L, to: {loop: 1 L/min, product: rest}}
+  loop: {kind: tubular, volume: 1e-6 L, to: tank}
+`;
+  const args = ["simulate", "quick.yaml", "--pulse", "feed", "--engine", "ode", "--until", "300 min"];
+  const { status, err } = await backmix(args, { files: { "quick.yaml": quick } });
+  expect(status).toBe(3);
+  expect(err).toContain("stopped 0 s after the start, in tank: too many steps for the time asked");
+});
