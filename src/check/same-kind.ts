@@ -4,8 +4,8 @@ import { describeDimension, exampleFor, nameDimension } from "../units/describe.
 import { type Dimension, sameDimension } from "../units/dimension.js";
 
 /** A value that stands in for another must be of its dimension. */
-export function sameKind(wanted: Dimension, { dimension, at }: Value, report: Report): void {
-  if (sameDimension(wanted, dimension)) return;
+export function sameKind(wanted: Dimension, { dimension, at, unknown }: Value, report: Report): void {
+  if (unknown || sameDimension(wanted, dimension)) return;
   report("wrong-dimension", at, {
     text: at.source.text.slice(at.from, at.to),
     got: nameDimension(dimension),

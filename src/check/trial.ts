@@ -22,9 +22,13 @@ export function checkTrial(network: Network | undefined, trial: Trial, report: R
   for (const { level, at } of trial.contents?.levels ?? []) {
     for (const reading of trial.readings) if (!checkLevel(level, at, reading, report)) break;
   }
+  // A draft is in the unit that the first dose makes: none where that is unknown.
+  const first = trial.injections[0]?.form;
+  const unknown = first?.is === "pulse" && first.amount.unknown;
+  const known = trial.readings.filter((r) => !unknown || r.series || r.calibration);
   const bases = network ? [network.basis] : (["volume", "mass"] as const);
   for (const injection of trial.injections) {
-    for (const reading of trial.readings) if (!checkAmount(injection, reading, bases, report)) break;
+    for (const reading of known) if (!checkAmount(injection, reading, bases, report)) break;
   }
 }
 
@@ -90,7 +94,7 @@ function checkHolds(network: Network, name: string, at: Parameters<Report>[1], l
 
 /** Is what the vessel holds at the start what is read? True where it is. */
 function checkLevel(level: Value, at: Parameters<Report>[1], reading: Reading, report: Report): boolean {
-  if (reading.scale === "free" || sameDimension(level.dimension, reading.unit.dimension)) return true;
+  if (level.unknown || reading.scale === "free" || sameDimension(level.dimension, reading.unit.dimension)) return true;
   const amount = level.unit?.name || "a bare number";
   report("contents-unit", at, { amount, at: reading.at, reading: reading.unit.name || "a bare number" });
   return false;
@@ -103,7 +107,7 @@ function checkAmount(
   bases: readonly Basis[],
   report: Report,
 ): boolean {
-  if (reading.scale === "free") return true;
+  if (reading.scale === "free" || (form.is === "pulse" && form.amount.unknown)) return true;
   const read = reading.unit.dimension;
   const written = form.is === "pulse" ? form.amount : form.is === "step" ? form.level : undefined;
   const given: Dimension = written?.dimension ?? (form.is === "signal" ? form.table.valueUnit.dimension : read);

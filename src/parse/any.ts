@@ -10,7 +10,7 @@ import type { DocumentKind } from "../schema/shape.js";
 import { parseChemistry } from "./chemistry.js";
 import { parseDuty } from "./duty.js";
 import { type NetworkDocument, parseNetwork } from "./network.js";
-import { filesOf, type ParseOptions, readDocument } from "./parsed.js";
+import { filesOf, type Held, type ParseOptions, readDocument } from "./parsed.js";
 import { parseChange, parseStudy } from "./study.js";
 import { parseTrial } from "./trial.js";
 
@@ -40,30 +40,26 @@ export function parseAny(text: string, options: ParseOptions = {}): AnyDocument 
     return { kind, network: undefined, problems: [...reading.problems, ...problems] };
   }
   if (kind === "trial") {
-    const { document, problems } = parseTrial(reading, options);
-    return {
-      kind,
-      network: undefined,
-      problems: document ? [...problems, ...vesselOf(document, options)] : problems,
-    };
+    const { problems } = parseTrial(reading, options, holdAgainstVessel(options));
+    return { kind, network: undefined, problems };
   }
   const parse = { chemistry: parseChemistry, duty: parseDuty, study: parseStudy }[kind];
   return { kind, network: undefined, problems: parse(reading, options).problems };
 }
 
-/** How a trial fits the vessel that it names, or what is wrong with that. */
-function vesselOf(trial: Trial, options: ParseOptions): Problem[] {
-  const { report, problems } = collector();
-  if (trial.vessel === undefined) return problems;
-  const at = trial.vesselAt ?? trial.at;
-  const text = at.source.text.slice(at.from, at.to).replace(/^(["'])(.*)\1$/, "$2");
-  const content = openText(trial.vessel, { text, at }, filesOf(trial.vessel, options), report);
-  if (content === undefined) return problems;
-  const parsed = parseNetwork(content, { ...options, path: trial.vessel });
-  if (!parsed.document) return parsed.problems;
-  checkTrial(parsed.document, plannedIn(trial, parsed.document.basis), report);
-  return problems;
-}
+/** Does a trial fit the vessel that it names? */
+const holdAgainstVessel =
+  (options: ParseOptions): Held<Trial> =>
+  (trial, report, adopt) => {
+    if (trial.vessel === undefined) return;
+    const at = trial.vesselAt ?? trial.at;
+    const text = at.source.text.slice(at.from, at.to).replace(/^(["'])(.*)\1$/, "$2");
+    const content = openText(trial.vessel, { text, at }, filesOf(trial.vessel, options), report);
+    if (content === undefined) return;
+    const parsed = parseNetwork(content, { ...options, path: trial.vessel });
+    if (parsed.document) checkTrial(parsed.document, plannedIn(trial, parsed.document.basis), report);
+    else adopt(parsed.problems);
+  };
 
 /** A change alone, without a base to lay it over. */
 const isChange = (tree: MapNode): boolean => child(tree, "change") !== undefined && !child(tree, "based-on");

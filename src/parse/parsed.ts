@@ -61,6 +61,9 @@ export type Meaning<T> = (
   adopt: (problems: readonly Problem[]) => void,
 ) => T | undefined;
 
+/** What is asked of a document beside its own meaning, whether it has errors or not. */
+export type Held<T> = (document: T, ...to: [report: Report, adopt: (problems: readonly Problem[]) => void]) => void;
+
 /**
  * text -> tree -> shape -> meaning; the same for all five documents.
  * @param meaning runs only on a tree whose shape is right; what it gives counts only where no error was reported

@@ -30,7 +30,12 @@ export function parseStudy(text: string | Reading, options: ParseOptions = {}): 
     const rivals = open("rivals", parseNetwork).map(
       (n): Rival => ({ network: n, tree: n.tree, path: n.file, files: n.files }),
     );
-    const trials = open("trials", parseTrial);
+    const trials = open("trials", (content, own) =>
+      parseTrial(content, own, (trial, tell) => {
+        // One with errors is held against the first rival, too.
+        if (rivals[0]) checkTrial(rivals[0].network, trial, tell);
+      }),
+    );
     const duties = open("duties", parseDuty);
     const changes = open("changes", parseChange);
     for (const { network } of rivals) {

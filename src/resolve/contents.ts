@@ -4,8 +4,9 @@ import { entriesOf, type Tree } from "../read/tree.js";
 import { resolveDetectorValue } from "./detector.js";
 import { aboveZero } from "./sign.js";
 import type { TrialClock } from "./trial-clock.js";
+import { unknownValue } from "./unknown.js";
 
-/** What the vessel of a trial holds at the start. Undefined where it says nothing, or where something is wrong; reported. */
+/** What the vessel of a trial holds at the start. Undefined where it says nothing; what is wrong is reported and unknown. */
 export function resolveContents(
   node: Tree | undefined,
   clock: TrialClock,
@@ -16,9 +17,7 @@ export function resolveContents(
   const levels = entriesOf(node).map(({ key, value }) => {
     const level = resolveDetectorValue(value, anyWord, report);
     const right = level && aboveZero(`the tracer in '${key.text}'`, level, true, report);
-    return right ? { of: key.text, at: key.at, level } : undefined;
+    return { of: key.text, at: key.at, level: right ? level : unknownValue(value.at) };
   });
-  const known = levels.filter((l) => l !== undefined);
-  if (known.length < levels.length) return undefined;
-  return { at: node.at, begins: clock.format ? clock.first : 0, levels: known };
+  return { at: node.at, begins: clock.format ? clock.first : 0, levels };
 }

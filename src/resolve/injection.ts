@@ -9,9 +9,10 @@ import { resolveInlet } from "./inlet.js";
 import { aboveZero } from "./sign.js";
 import type { TrialClock } from "./trial-clock.js";
 import type { ResolvedTable } from "./trial-table.js";
+import { unknownValue } from "./unknown.js";
 import { emptyScope, resolveValue } from "./value.js";
 
-/** One injection of a trial, on the trial's clock. Undefined where something is wrong; reported. */
+/** One injection of a trial, on the trial's clock. What is wrong is reported and unknown; undefined where it has no place. */
 export function resolveInjection(
   node: MapNode,
   table: ResolvedTable | undefined,
@@ -25,11 +26,12 @@ export function resolveInjection(
   const given = written && startOf(written, clock, report);
   const form = resolveForm(node, table, given, clock, anyWord, files, report);
   const lasting = resolveValue(child(node, "lasting"), dimensions.time, emptyScope, report);
-  if (!aboveZero("the time that an injection takes", lasting, true, report)) return undefined;
+  aboveZero("the time that an injection takes", lasting, true, report);
   const first = form?.is === "signal" ? form.table.time[0] : clock.format ? clock.first : 0;
   const start = written ? given : first;
-  if (!form || start === undefined || at?.type !== "scalar") return undefined;
-  return { at: at.text, where: at.at, start, lasting: lasting?.of([]) ?? 0, form };
+  if (at?.type !== "scalar") return undefined;
+  const put = form ?? { is: "pulse", amount: unknownValue(node.at) };
+  return { at: at.text, where: at.at, start: start ?? clock.first, lasting: lasting?.of([]) ?? 0, form: put };
 }
 
 /** A start on the trial's clock. On a clock without dates, more than half a day after the last reading is the day before. */

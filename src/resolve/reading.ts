@@ -4,7 +4,7 @@ import type { Files } from "../read/files.js";
 import { child, itemsOf, type MapNode, type Tree, textOf } from "../read/tree.js";
 import { dimensions, sameDimension } from "../units/dimension.js";
 import { formatQuantity } from "../units/format.js";
-import type { Unit } from "../units/unit.js";
+import { one, type Unit } from "../units/unit.js";
 import { resolveCalibration, sameSignal } from "./calibration.js";
 import { resolveDetectorValue } from "./detector.js";
 import { resolvePlaces } from "./places.js";
@@ -62,6 +62,27 @@ export function resolveReading(
     noise,
     leaveOut,
     unit,
+  };
+}
+
+/** What stands for a reading whose file or settings cannot be used, once the reason is reported: the places it draws from. */
+export function unreadable(node: MapNode): Reading {
+  const drawn = resolvePlaces(child(node, "at"), () => {});
+  return {
+    at: drawn?.at ?? "",
+    where: child(node, "at")?.at ?? node.at,
+    places: drawn?.places ?? [],
+    series: undefined,
+    ...draft,
+    censored: undefined,
+    limits: { below: undefined, above: undefined },
+    calibration: undefined,
+    baseline: "none",
+    scale: "free", // in what unit it would be nobody knows
+    line: { delay: undefined, lag: undefined },
+    noise: undefined,
+    leaveOut: [],
+    unit: one,
   };
 }
 

@@ -5,16 +5,14 @@ import { dimensions } from "../units/dimension.js";
 import { aboveZero } from "./sign.js";
 import { emptyScope, resolveValue } from "./value.js";
 
-/** `tracer:`; undefined where there is none, "faulty" where it is wrong and reported. */
-export function resolveTracer(node: Tree | undefined, report: Report): Tracer | undefined | "faulty" {
+/** `tracer:`; undefined where there is none. What is wrong in it is reported and left out; places and names stay. */
+export function resolveTracer(node: Tree | undefined, report: Report): Tracer | undefined {
   if (!node) return undefined;
   const halfLife = resolveValue(child(node, "half-life"), dimensions.time, emptyScope, report);
   const loss = resolveValue(child(node, "loss"), dimensions.frequency, emptyScope, report);
-  if ((child(node, "half-life") && !halfLife) || (child(node, "loss") && !loss)) return "faulty";
-  if (!aboveZero("the half-life of a tracer", halfLife, false, report)) return "faulty";
-  if (!aboveZero("the loss of a tracer", loss, true, report)) return "faulty";
+  aboveZero("the half-life of a tracer", halfLife, false, report);
+  aboveZero("the loss of a tracer", loss, true, report);
   const retained = entriesOf(child(node, "retained")).map(({ key, value }) => resolveRetained(key, value, report));
-  if (!retained.every((r) => r !== undefined)) return "faulty";
   const follows = child(node, "follows");
   return {
     ...(follows?.type === "scalar" ? { follows: { of: follows.text, at: follows.at } } : {}),
@@ -29,11 +27,11 @@ function resolveRetained(
   key: { readonly text: string; readonly at: Retained["at"] },
   value: Tree,
   report: Report,
-): Retained | undefined {
+): Retained {
   const body = { body: key.text, at: key.at };
   if (value.type === "scalar" && /^[A-Za-z][\w.-]*$/.test(value.text.trim()))
     return { ...body, factor: { name: value.text.trim(), at: value.at } };
   const factor = resolveValue(value, dimensions.ratio, emptyScope, report);
-  if (!factor || !aboveZero("a retention", factor, false, report)) return undefined;
-  return { ...body, factor: factor.of([]) };
+  aboveZero("a retention", factor, false, report);
+  return { ...body, factor: factor?.of([]) ?? Number.NaN };
 }

@@ -7,17 +7,19 @@ import type { Report } from "../problems/report.js";
 import type { Files } from "../read/files.js";
 import { beside } from "../read/paths.js";
 import { child, entriesOf, itemsOf, type MapNode, type ScalarNode, type Tree, textOf } from "../read/tree.js";
+import type { Span } from "../text/source.js";
 import { isLevel } from "../units/basis.js";
 import { dimensions } from "../units/dimension.js";
 import type { Unit } from "../units/unit.js";
 import { resolveContents } from "./contents.js";
 import { meanFlow, resolveFlowLog } from "./flow-log.js";
 import { resolveInjection, signalNode } from "./injection.js";
-import { resolveReading } from "./reading.js";
+import { resolveReading, unreadable } from "./reading.js";
 import { aboveZero } from "./sign.js";
 import { resolveTracer } from "./tracer.js";
 import { type TrialClock, trialClock } from "./trial-clock.js";
 import { knownUnit, type ResolvedTable, resolveTable } from "./trial-table.js";
+import { unknownValue } from "./unknown.js";
 import { emptyScope, resolveValue, type Scope, type Wanted } from "./value.js";
 
 /**
@@ -25,7 +27,7 @@ import { emptyScope, resolveValue, type Scope, type Wanted } from "./value.js";
  * @param tree  a document that has passed the shape check
  * @param path  of the document
  * @param scope names that `flows` and `with` may use: the network's, where one is known
- * @returns undefined where something is wrong that leaves no trial; reported, as is everything else
+ * @returns what can be read; what is wrong is reported and unknown in it, so that the rest is checked all the same
  */
 export function resolveTrial(
   tree: MapNode,
@@ -33,7 +35,7 @@ export function resolveTrial(
   files: Files,
   report: Report,
   scope: Scope = emptyScope,
-): Trial | undefined {
+): Trial {
   const readingNodes = mapsOf(child(tree, "readings"));
   const injectionNodes = mapsOf(child(tree, "injection"));
   const free = readingNodes.length > 0 && readingNodes.every((node) => textOf(node, "scale") === "free");
@@ -46,44 +48,46 @@ export function resolveTrial(
   const logTables = entriesOf(child(tree, "flows")).flatMap(({ key, value }) => {
     if (value.type !== "map") return [];
     const log = resolveFlowLog(key.text, value, files, report);
-    return [{ feed: key.text, at: key.at, log }];
+    const unit = textOf(child(value, "value"), "unit");
+    return [{ feed: key.text, at: key.at, log, unit: unit === undefined ? undefined : knownUnit(unit) }];
   });
   const tables = [...readTables, ...inletTables, ...logTables.map((l) => l.log)].filter((t) => t !== undefined);
   const clock = trialClock(tables);
   const title = child(tree, "trial");
-  if (!oneClock(tables, report)) return undefined;
+  // Between two clocks no time is right: which of them is meant is said, and nothing more of times.
+  const timed: Report = oneClock(tables, report) ? report : () => {};
 
   const onClock = (t: ResolvedTable | undefined): ResolvedTable | undefined => t && moved(t, -clock.originOf(t.clock));
   const injections = injectionNodes.map((node, i) =>
-    resolveInjection(node, onClock(inletTables[i]), clock, free, files, report),
+    resolveInjection(node, onClock(inletTables[i]), clock, free, files, timed),
   );
   const contents = resolveContents(child(tree, "contents"), clock, free, report);
   const start = injections[0]?.start ?? contents?.begins ?? 0;
-  const dose = injections[0]?.form.is === "pulse" ? injections[0].form.amount : undefined;
   const first = injections[0]?.form;
+  const dose = first?.is === "pulse" && !first.amount.unknown ? first.amount : undefined;
   const level = first?.is === "step" && isLevel(first.level.dimension) ? first.level : undefined;
   const planned = plannedUnit(dose, level ?? contents?.levels[0]?.level);
   if (injectionNodes.length === 0 && !child(tree, "contents")) report("nothing-put-in", title?.at ?? tree.at, {});
   const readings = readingNodes.map((node, i) => {
     const missing = child(node, "file") !== undefined && readTables[i] === undefined;
     const own = afterMidnight(onClock(readTables[i]), start, clock);
-    const reading = resolveReading(node, own, clock, planned, files, report);
-    return missing ? undefined : reading;
+    const reading = resolveReading(node, own, clock, planned, files, timed);
+    return missing || !reading ? unreadable(node) : reading;
   });
   const flows = values(child(tree, "flows"), [dimensions.flow, dimensions["mass rate"]], scope, report);
+  for (const flow of flows.values()) if (flow.uses.length === 0) aboveZero("the flow of a feed", flow, true, report);
   const flowLogs = new Map<string, Series>();
-  for (const { feed, at, log } of logTables) {
+  for (const { feed, at, log, unit } of logTables) {
     const moved = onClock(log);
-    if (!moved) continue;
+    if (!moved) {
+      flows.set(feed, unknownOf(unit, at));
+      continue;
+    }
     flowLogs.set(feed, moved.series);
     flows.set(feed, meanFlow(moved.series, at));
   }
-  if (logTables.some(({ log }) => !log)) return undefined;
-  for (const flow of flows.values()) if (flow.uses.length === 0) aboveZero("the flow of a feed", flow, true, report);
   const { settings, late } = settingsOf(child(tree, "with"), scope, report);
   const tracer = resolveTracer(child(tree, "tracer"), report);
-  const whole = tracer !== "faulty" && [...injections, ...readings].every((part) => part !== undefined);
-  if (!whole || (child(tree, "contents") && !contents)) return undefined;
   if (contents && tracer?.loss)
     report("not-yet", child(tree, "contents")?.at ?? tree.at, { what: "`contents` beside a `loss` of the tracer" });
   return {
@@ -98,7 +102,7 @@ export function resolveTrial(
     ...(late.size > 0 ? { late } : {}),
     injections: injections.filter((part) => part !== undefined),
     ...(contents ? { contents } : {}),
-    readings: readings.filter((part) => part !== undefined),
+    readings,
     ...(tracer ? { tracer } : {}),
     ...(clock.format ? { clock: clock.format } : {}),
   };
@@ -124,8 +128,7 @@ function settingsOf(
     const open = written && !isFault(written) && namesIn(written.expression).some((n) => scope.slot(n) === undefined);
     if (open) late.set(key.text, value as ScalarNode);
     else {
-      const resolved = resolveValue(value, "any", scope, report);
-      if (resolved) settings.set(key.text, resolved);
+      settings.set(key.text, resolveValue(value, "any", scope, report) ?? unknownValue(value.at));
     }
   }
   return { settings, late };
@@ -135,10 +138,16 @@ function values(node: Tree | undefined, wanted: Wanted, scope: Scope, report: Re
   const found = new Map<string, Value>();
   for (const { key, value } of entriesOf(node)) {
     if (value.type === "map") continue; // a table: read with the others
-    const resolved = resolveValue(value, wanted, scope, report);
-    if (resolved) found.set(key.text, resolved);
+    found.set(key.text, resolveValue(value, wanted, scope, report) ?? unknownValue(value.at));
   }
   return found;
+}
+
+/** What stands for the mean of a log that cannot be read; its kind of flow is known by its unit. */
+function unknownOf(unit: Unit | undefined, at: Span): Value {
+  if (!unit) return unknownValue(at);
+  const { unknown: _, ...mean } = unknownValue(at, unit.dimension);
+  return mean;
 }
 
 /** Elapsed times and clock times have no common zero. */
