@@ -136,7 +136,8 @@ describe("moments", () => {
       expect(at(document, "readings.0.indices")).toHaveProperty(key);
     }
     expect(Object.keys(at(document, "readings.0.mean") as object)).toEqual(["value", "unit", "standardError"]);
-    expect(Object.keys(at(document, "readings.0.curve") as object)).toEqual(["time", "E", "F"]);
+    const curve = Object.keys(at(document, "readings.0.curve") as object);
+    expect(curve).toEqual(["time", "E", "F", "W", "standardErrorF", "internalAge", "intensity"]);
     expect(at(document, "readings.0.recovery.value")).toBeCloseTo(1, 2);
     expect(at(document, "readings.0.mean.value")).toBeCloseTo(8, 1);
   });
