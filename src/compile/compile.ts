@@ -12,6 +12,7 @@ import type { Plant, PlantStream, Settings } from "./plant.js";
 import { valuesInRange, volumesOf } from "./ranges.js";
 import type { Say } from "./say.js";
 import { carriedFlows, sendsPossible } from "./sends.js";
+import { sendsTrapped } from "./sends-trapped.js";
 import { spellOut } from "./spell.js";
 import { Structure } from "./structure.js";
 
@@ -87,6 +88,7 @@ export function impossible(network: Network, flows: boolean): Problem[] {
   const found = flows ? balanceFlows(network, env, report, say) : undefined;
   valuesInRange(bounded, env, report, say);
   sendsPossible(network, env, found?.streams, report, say);
+  if (found && problems.length === 0) sendsTrapped(network, env, found.streams, report);
   return problems.filter((p) => p.code !== "not-finite");
 }
 
@@ -121,6 +123,7 @@ function balance(network: Network, settings: Settings, plan?: FlowPlan) {
   const flows = balanceFlows(network, env, report, say, plan);
   valuesInRange(network, env, report, say);
   sendsPossible(network, env, flows?.streams, report, say);
+  if (flows && problems.length === 0) sendsTrapped(network, env, flows.streams, report);
   return { env, volumes, flows, problems };
 }
 

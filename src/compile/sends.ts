@@ -9,7 +9,7 @@ import type { SolvedStream } from "./solved-stream.js";
 const rounding = 1e-9;
 
 /** The share of a substance that each stream takes, by stream; `rest` is what the others leave. */
-function sharesOf(streams: readonly Stream[], of: string, env: ArrayLike<number>) {
+export function sharesOf(streams: readonly Stream[], of: string, env: ArrayLike<number>) {
   const parts = streams.map((s) => s.carries?.get(of));
   const shares = parts.map((part) => (part === undefined || part === "rest" ? 0 : part.of(env)));
   const total = shares.reduce((sum, x) => sum + x, 0);

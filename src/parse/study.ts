@@ -27,7 +27,7 @@ export function parseStudy(text: string | Reading, options: ParseOptions = {}): 
         adopt(parsed.problems);
         return parsed.document ? [{ ...parsed.document, file }] : [];
       });
-    const rivals = open("rivals", parseNetwork).map(
+    const rivals = toldApart(open("rivals", parseNetwork)).map(
       (n): Rival => ({ network: n, tree: n.tree, path: n.file, files: n.files }),
     );
     const trials = open("trials", (content, own) =>
@@ -60,6 +60,18 @@ export function parseStudy(text: string | Reading, options: ParseOptions = {}): 
       out: textOf(tree, "out"),
       seed: Number(textOf(tree, "seed") ?? 1),
     };
+  });
+}
+
+/** Rivals of one title are told apart by their files wherever results name them. */
+function toldApart<T extends { readonly title: string; readonly file: string }>(rivals: readonly T[]): T[] {
+  const last = (file: string): string => file.slice(file.lastIndexOf("/") + 1);
+  return rivals.map((rival) => {
+    const { title, file } = rival;
+    const others = rivals.filter((r) => r !== rival && r.title === title);
+    if (others.length === 0) return rival;
+    const alike = others.some((r) => last(r.file) === last(file));
+    return { ...rival, title: `${title} (${alike ? file : last(file)})` };
   });
 }
 

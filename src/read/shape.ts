@@ -87,6 +87,8 @@ function findingOf(fault: Fault, tree: MapNode, kind: DocumentKind, shape: Shape
     case "dependentRequired":
     case "required": {
       const key = String(fault.params.missingProperty);
+      // A slope beside a table of standards: that there are two is told, not that one of them is half there.
+      if (fault.keyword === "dependentRequired" && child(here.node, "points")) return undefined;
       if (key === "format" && !here.key) return finding(here.mark, () => report("missing-format", here.mark, {}), key);
       const inside = here.shape && narrow(here.shape, here.node);
       const example = inside?.is === "record" ? inside.keys[key]?.example : variantExample(here, key);

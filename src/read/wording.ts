@@ -36,7 +36,11 @@ export function wanted(shape: Shape): string {
 }
 
 const dimensionWords = (dimension: DimensionName | readonly DimensionName[]): string =>
-  typeof dimension === "string" ? dimension : dimension.join(" or ");
+  typeof dimension === "string" ? dimensionWord(dimension) : dimension.map(dimensionWord).join(" or ");
+
+/** As values' own messages call it. */
+const dimensionWord = (dimension: DimensionName): string =>
+  dimension === "ratio" ? "pure number or share (like 15 %)" : dimension;
 
 /** What stands there, in words. */
 export const found = (node: Tree): string =>

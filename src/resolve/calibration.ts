@@ -32,7 +32,8 @@ export function resolveCalibration(
   if (points) return throughPoints(points, raw, files, report);
   if (child(node, "rise") && child(node, "per")) return straight(node, raw, report);
   if (child(node, "temperature") && !plain) return undefined;
-  report("calibration-incomplete", node.at, {});
+  // One of the two without the other: the shape says which is missing.
+  if (!child(node, "rise") && !child(node, "per")) report("calibration-incomplete", node.at, {});
   return "faulty";
 }
 

@@ -137,6 +137,15 @@ export const flowEntries = {
     says: ({ name, to, of, share }) => `'${name}' sends ${share} of '${of}' to '${to}', but no liquid to carry it`,
     fix: "send some liquid there, too; a substance moves only with what flows",
   }),
+  "sends-trapped": entry<{ of: string; names: readonly string[] }>({
+    severity: "error",
+    says: ({ of, names }) =>
+      names.length === 1
+        ? `'${of}' that gets into ${quoted(names)} never leaves: no way that it is sent leads to an outlet`
+        : `'${of}' that gets in among ${quoted(names)} never leaves: no way that it is sent leads to an outlet`,
+    fix: ({ of }) =>
+      `send a share of '${of}' on towards an outlet, however small: what is held back for ever has no steady state`,
+  }),
   "closed-apart": entry<{ names: readonly string[]; from: string }>({
     severity: "error",
     says: ({ names, from }) => `in this closed vessel nothing joins ${quoted(names)} with '${from}'`,

@@ -44,15 +44,17 @@ export const nameEntries = {
   }>({
     severity: "error",
     says: ({ name, wanted }) => `there is no ${wanted} '${name}'`,
-    fix: ({ nearest, wanted, known = [], row }) =>
+    fix: ({ nearest, wanted, known, row }) =>
       row
         ? `the tanks of '${row.name}' are '${row.name}.1' to '${row.name}.${row.tanks}'`
-        : orNearest(
-            nearest,
-            known.length > 0 && known.length <= fewNames
-              ? `what may stand here: ${known.map((k) => `'${k}'`).join(", ")}`
-              : `name a ${wanted} that is declared`,
-          ),
+        : known?.length === 0 && wanted === "feed" // a closed vessel cannot have one
+          ? `take it out: the network has no ${wanted}`
+          : orNearest(
+              nearest,
+              known && known.length > 0 && known.length <= fewNames
+                ? `what may stand here: ${known.map((k) => `'${k}'`).join(", ")}`
+                : `name a ${wanted} that is declared`,
+            ),
   }),
   "unused-name": entry<{ name: string; role: string }>({
     severity: "warning",

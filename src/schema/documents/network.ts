@@ -191,8 +191,17 @@ const title = "What the network describes. The first key says what the file is; 
 
 /** A network whole. */
 function wholeNetwork(kinds: Readonly<Record<string, KindKeys>>): RecordShape {
+  const top = heading("network", title, "Ester hydrolysis vessel V-3, as built");
   return record({
-    ...heading("network", title, "Ester hydrolysis vessel V-3, as built"),
+    network: top.network,
+    format: top.format,
+    basis: {
+      shape: choice("volume", "mass"),
+      says: "What the network counts in. `mass`: every `volume` is a hold-up in kg, every flow one in kg/h, and tracer in trials a mass fraction (`g/kg`) or an amount per kg; nothing asks for a density. Parts must have the same basis.",
+      default: "volume",
+      example: "mass",
+    },
+    ...top,
     constants,
     parameters,
     requires: {
@@ -212,12 +221,6 @@ function wholeNetwork(kinds: Readonly<Record<string, KindKeys>>): RecordShape {
       example: "[product]",
     },
     checks,
-    basis: {
-      shape: choice("volume", "mass"),
-      says: "What the network counts in. `mass`: every `volume` is a hold-up in kg, every flow one in kg/h, and tracer in trials a mass fraction (`g/kg`) or an amount per kg; nothing asks for a density. Parts must have the same basis.",
-      default: "volume",
-      example: "mass",
-    },
   });
 }
 
