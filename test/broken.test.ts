@@ -103,6 +103,7 @@ test("every code that a file can show has a broken example, named by it", () => 
 const shownBy: Record<keyof typeof runEntries, string> = {
   "not-carried": "compile/carried.test.ts",
   "too-many-passes": "simulate/closed.test.ts",
+  "loop-too-short": "simulate/ode.test.ts",
   "flows-vary": "simulate/logged-flows.test.ts",
   "flows-vary-body": "simulate/logged-flows.test.ts",
   "too-many-cells": "compile/carried.test.ts",

@@ -4,7 +4,7 @@ import type { Passing } from "./laplace-gain.js";
 import type { Passes } from "./laplace-passes.js";
 import type { PassesSlope } from "./laplace-passes-slope.js";
 import { type Channel, transformsOf } from "./laplace-transforms.js";
-import type { Drive } from "./linear-system.js";
+import { type Drive, since } from "./linear-system.js";
 import type { Seen } from "./respond.js";
 
 /** Nodes per window where the rest is tried, and nodes times copies. */
@@ -96,7 +96,7 @@ export function addParts(
     const smooth =
       node === undefined || copy === copies.length || copies[copy].smooth[node] > 0 || (lag > 0 && direct > 0);
     for (const { power, shift, factor } of impulses) {
-      const after = times.map((t) => t - delay - shift);
+      const after = times.map((t) => since(t, delay + shift));
       const due = [...after.keys()].filter((i) => after[i] >= 0);
       const ask = (transform: number, order: number, scale: number, group: number, take: Take) => {
         if (!smooth || due.length === 0) return;

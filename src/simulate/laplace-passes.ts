@@ -5,6 +5,7 @@ import { type Adjacency, adjacency } from "../numerics/graph.js";
 import { NodeEquations } from "../transfer/node-equations.js";
 import type { Entry } from "./entry.js";
 import type { Passing } from "./laplace-gain.js";
+import { sameTime } from "./linear-system.js";
 import { putIn } from "./moments.js";
 
 /** Tracer on its way into a copy: what left a delayed node; `slot` numbers it. */
@@ -98,7 +99,7 @@ export function passes(
       const through = (enteringDirect[node] + enteringSmooth[node]) * plant.nodes[node].inflow;
       if (through === 0) continue;
       const then = delay + passing[node].delay;
-      if (then > horizon || through < smallest) {
+      if (then > horizon * (1 + sameTime) || through < smallest) {
         exits.push({ node, slot: undefined });
         continue;
       }

@@ -50,6 +50,15 @@ export interface Answer {
   readonly integral: Float64Array;
 }
 
+/** Times closer than this, relative, are one: how far rounding may part two ways to the same sum of delays. */
+export const sameTime = 2e-12;
+
+/** Time since something came, s: what comes at t but for rounding has just come, as a value at a jump is the limit from the right. */
+export function since(t: number, came: number): number {
+  const u = t - came;
+  return u < 0 && u >= -sameTime * came ? 0 : u;
+}
+
 /** One way to integrate a linear system. All engines keep this promise and are tested by one contract. */
 export interface TracerEngine {
   readonly name: string;

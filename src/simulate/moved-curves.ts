@@ -1,7 +1,7 @@
 import { sparseRows } from "../numerics/sparse.js";
 import { DrivenSteps } from "./driven-steps.js";
 import { exact } from "./exact.js";
-import type { Drive, Query } from "./linear-system.js";
+import { type Drive, type Query, since } from "./linear-system.js";
 import type { MovedPassage, MovedSystem } from "./moved-system.js";
 
 /** Curves of the probes, and by direction their derivatives; both to be added to. */
@@ -54,8 +54,8 @@ function addDensely(system: MovedSystem, drive: Drive, times: readonly Float64Ar
 /** The times at which tracer has come, counted from then, and the index of the first. */
 function localTimes(times: Float64Array, delay: number): [number, Float64Array] {
   let first = 0;
-  while (first < times.length && times[first] - delay < 0) first++;
-  return [first, times.subarray(first).map((t) => t - delay)];
+  while (first < times.length && since(times[first], delay) < 0) first++;
+  return [first, times.subarray(first).map((t) => since(t, delay))];
 }
 
 /** The part of a derivative that is read from the states themselves: moved weights, and the shift in time. */
@@ -90,7 +90,7 @@ function addByEngine(system: MovedSystem, drive: Drive, times: readonly Float64A
   probes.forEach((passages, r) => {
     for (const passage of passages) {
       const { states, weights, direct, delay, delays } = passage;
-      const local = times[r].map((t) => t - delay);
+      const local = times[r].map((t) => since(t, delay));
       const ask = (signal: Query["signal"], into: Float64Array, late: number): void => {
         queries.push({ signal, times: local, integral: false });
         adders.push((values) => {

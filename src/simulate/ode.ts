@@ -1,12 +1,14 @@
 import type { Realization } from "../compartments/realization.js";
 import { requireCarried } from "../compile/carried.js";
 import { Part, type Plant } from "../compile/plant.js";
+import { RefusedError } from "../problems/refused.js";
+import { problem } from "../problems/report.js";
 import { arrivals } from "./arrivals.js";
 import { partsOf } from "./entry.js";
 import { extrapolation } from "./extrapolation.js";
 import { type FlowCourse, steadyCourse } from "./flow-course.js";
 import { haltSaid } from "./halts.js";
-import { integrable } from "./integrable.js";
+import { type Integrable, integrable } from "./integrable.js";
 import { Integration, type Put } from "./integration.js";
 import { type Drive, instant } from "./linear-system.js";
 import type { TracerWay, Tracing } from "./tracing.js";
@@ -36,6 +38,7 @@ export function integrate(plant: Plant, course: FlowCourse, horizon: number, put
     n.inflow > 0 ? n.block?.realize(n.inflow) : undefined,
   );
   const net = integrable(plant, realized);
+  requireFewSteps(net, course, horizon);
   let last: { drive: Drive; looks: Set<number>; run: Integration } | undefined;
   const outlets = plant.outlets.map((o) => o.node);
   const runOf = (drive: Drive, looks: readonly number[]): Integration => {
@@ -93,6 +96,19 @@ export function integrate(plant: Plant, course: FlowCourse, horizon: number, put
       };
     },
   };
+}
+
+/** Steps that a loop with a short delay may need; at some 50 us each these are over in a quarter of a minute. */
+const mostLoopSteps = 200_000;
+
+/** @throws RefusedError where a delay in a loop is so short that steps no longer than it would not come to an end */
+function requireFewSteps({ plant, looped, lag }: Integrable, course: FlowCourse, horizon: number): void {
+  for (let i = 0; i < lag.length; i++) {
+    if (!looped[i] || !(lag[i] > 0)) continue;
+    const passes = horizon / course.shortest(i, lag[i]);
+    const { name } = plant.nodes[i];
+    if (passes > mostLoopSteps) throw new RefusedError([problem("loop-too-short", plant.network.at, { name, passes })]);
+  }
 }
 
 function spikesUntil(run: Integration, node: number, t: number, course: FlowCourse): number {

@@ -1,6 +1,6 @@
 import { Part, type Plant } from "../compile/plant.js";
 import type { Drive, Passage, Query, TracerEngine } from "./linear-system.js";
-import { driveAt } from "./linear-system.js";
+import { driveAt, sameTime, since } from "./linear-system.js";
 import type { Unrolled } from "./unroll.js";
 
 /** Sums of passages at clock times: concentration (per unit of amount), its integral from 0. */
@@ -27,7 +27,7 @@ export function see(
   const queries: Query[] = [];
   for (const look of looks) {
     for (const p of look.passages)
-      queries.push({ signal: p, times: look.times.map((t) => t - p.delay), integral: look.integral ?? true });
+      queries.push({ signal: p, times: look.times.map((t) => since(t, p.delay)), integral: look.integral ?? true });
   }
   const { answers, stopped } = engine.run(unrolled.system(), drive, queries);
   let q = 0;
@@ -56,14 +56,10 @@ export interface Balance {
   readonly closure: number;
 }
 
-/** The tracer balance at clock time `until`; `inside` from what cells and tubes hold, not from a difference. */
-export function balanceAt(
-  plant: Plant,
-  unrolled: Unrolled,
-  drive: Drive,
-  until: number,
-  engine: TracerEngine,
-): Balance {
+/** The tracer balance at clock time `ends`; `inside` from what cells and tubes hold, not from a difference. */
+export function balanceAt(plant: Plant, unrolled: Unrolled, drive: Drive, ends: number, engine: TracerEngine): Balance {
+  // A little later, so that what leaves a tube at that very time is nowhere counted twice for rounding.
+  const until = ends * (1 + sameTime);
   const looks: Look[] = [];
   const weigh: ((s: Seen) => number)[] = [];
   let left = 0;

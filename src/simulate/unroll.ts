@@ -8,7 +8,7 @@ import { sparseRows } from "../numerics/sparse.js";
 import { add, type Copy, type Draft, type UnrollPlan } from "./drafts.js";
 import { type Entry, partsOf } from "./entry.js";
 import { type Blend, jointBlends } from "./joints.js";
-import type { LinearSystem, Passage } from "./linear-system.js";
+import { type LinearSystem, type Passage, sameTime } from "./linear-system.js";
 import { type UnrolledSlope, unrolledSlope } from "./unroll-slopes.js";
 
 /**
@@ -99,7 +99,8 @@ class Unroller {
       this.copies.push(copy);
       for (const [tube, draft] of copy.inlets) {
         const delay = next.delay + this.plant.nodes[tube].volume / this.plant.nodes[tube].inflow;
-        if (delay > horizon || (this.loops && Math.abs(this.passed(tube, draft)) < smallestPass)) continue;
+        if (delay > horizon * (1 + sameTime) || (this.loops && Math.abs(this.passed(tube, draft)) < smallestPass))
+          continue;
         const at = waiting.findIndex((w) => w.delay >= delay * (1 - 1e-12));
         if (at >= 0 && Math.abs(waiting[at].delay - delay) <= 1e-12 * delay) {
           const same = waiting[at].seeds.get(tube);

@@ -1,4 +1,5 @@
 import { describe, expect, test } from "vitest";
+import { exact } from "../../src/simulate/exact.js";
 import { laplace } from "../../src/simulate/laplace.js";
 import { ode } from "../../src/simulate/ode.js";
 import { engineFor } from "../../src/simulate/trace.js";
@@ -33,6 +34,38 @@ function compare(body: string, form: "pulse" | "step" = "pulse") {
   });
   return most;
 }
+
+test.each([1, 3, 10, 30])("a sample just when a pass arrives counts it, in every engine: recycle %d", (recycle) => {
+  const plant = plantOf(vessel(`  a: {kind: tubular, volume: 1 L, to: {a: ${recycle} L/min, out: rest}}`));
+  // F after k passes through a tube with recycle R: 1 - (R / (1 + R))^k, every 60 / (1 + R) s
+  const passes = Array.from({ length: 30 }, (_, k) => k + 1);
+  for (const engine of [exact, laplace, ode]) {
+    for (const k of passes) {
+      const until = Float64Array.of((60 * k) / (1 + recycle));
+      for (const form of ["pulse", "step"] as const) {
+        const { readings, balance } = tracerResponse(plant, { at: "in", form }, until, { engine });
+        expect(Math.abs(readings[0].cumulative[0] - (1 - (recycle / (1 + recycle)) ** k))).toBeLessThan(1e-11);
+        expect(balance.closure).toBeLessThan(1e-11);
+        if (form === "pulse") expect(readings[0].spikes.length).toBe(k);
+      }
+    }
+  }
+});
+
+test("a tube so short in a loop that steps would not end is refused by integration alone, at once", () => {
+  const plant = plantOf(
+    vessel(
+      "  a: {kind: tubular, volume: 1e-8 L, to: b}\n  b: {kind: stirred, volume: 1 L, to: {a: 1 L/min, out: rest}}",
+    ),
+  );
+  const run = (engine?: typeof ode) =>
+    tracerResponse(plant, { at: "in", form: "pulse" }, Float64Array.of(60), engine ? { engine } : {});
+  expect(() => run(ode)).toThrow(
+    expect.objectContaining({ problems: [expect.objectContaining({ code: "loop-too-short" })] }),
+  );
+  // for its delay, a tank with a recycle is that tank
+  expect(Math.abs(run().readings[0].cumulative[0] - (1 - Math.exp(-1)))).toBeLessThan(1e-7);
+});
 
 describe("every kind: two independent ways to its curve", () => {
   test.each([

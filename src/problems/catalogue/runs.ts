@@ -32,6 +32,13 @@ export const runEntries = {
     fix: "ask for a shorter time with `--until`; where the mixing is over, the level is the amount over the volume",
     example: {},
   }),
+  "loop-too-short": entry({
+    severity: "error",
+    says: (d: { name: string; passes: number }) =>
+      `'${d.name}' delays so little, in a loop, that the ode engine would need about ${d.passes.toExponential(0)} steps: no step may be longer than a pass through it`,
+    fix: "leave the choice of the engine to the tool, without `--verify`, or ask for a shorter time with `--until`; if the delay does not matter, give the tube `volume: 0 L`",
+    example: { name: "pipe", passes: 1e8 },
+  }),
   "unknown-free": entry({
     severity: "error",
     says: (d: { name: string; nearest: string | undefined; names: readonly string[] }) =>
