@@ -81,9 +81,17 @@ function printForPeople({ text, problems = [], notes = [] }: Outcome, warnings: 
   if (after.length > 0) io.err(`${after.join("\n")}\n`);
 }
 
+/** Nothing is wrong with the input, but the engine asked for would not come to an end. */
+const outOfReach: ReadonlySet<string> = new Set(["loop-too-short"]);
+
 function outcomeOf(e: unknown, said: string, args: readonly string[]): Outcome {
   if (e instanceof InputError || e instanceof RefusedError)
-    return { status: 1, text: "", json: { ok: false }, problems: e.problems };
+    return {
+      status: e.problems.some((p) => outOfReach.has(p.code)) ? 3 : 1,
+      text: "",
+      json: { ok: false },
+      problems: e.problems,
+    };
   if (e instanceof UsageError) return wrongUsage(e.message, args);
   if (e instanceof CommanderError) {
     if (e.exitCode === 0) return { status: 0, text: said, json: { text: said.trimEnd() } };

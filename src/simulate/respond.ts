@@ -85,7 +85,8 @@ export function balanceAt(plant: Plant, unrolled: Unrolled, drive: Drive, ends: 
   seen.forEach((s, i) => {
     inside += weigh[i](s);
   });
-  const injected = driveAt(drive, until).total;
+  const put = driveAt(drive, until).total;
   const recovered = left + inside;
-  return { injected, left, inside, recovered, closure: injected > 0 ? Math.abs(injected - recovered) / injected : 0 };
+  const closure = put > 0 ? Math.abs(put - recovered) / put : 0;
+  return { injected: driveAt(drive, ends).total, left, inside, recovered, closure };
 }
