@@ -1,3 +1,5 @@
+import { product as times } from "./squaring.js";
+
 /**
  * exp(t T) and its integrals over t applied to a first unit vector, for one small dense matrix T and any number of times: powers
  * of two of a short step, kept as exp - 1 so that what is near 1 keeps its digits, multiplied as the binary digits of t say.
@@ -105,16 +107,4 @@ function doubled(f: Float64Array, n: number): Float64Array {
   const g = times(f, f, n);
   for (let i = 0; i < g.length; i++) g[i] += 2 * f[i];
   return g;
-}
-
-function times(a: Float64Array, b: Float64Array, n: number): Float64Array {
-  const c = new Float64Array(n * n);
-  for (let i = 0; i < n; i++) {
-    for (let k = 0; k < n; k++) {
-      const aik = a[i * n + k];
-      if (aik === 0) continue;
-      for (let j = 0; j < n; j++) c[i * n + j] += aik * b[k * n + j];
-    }
-  }
-  return c;
 }

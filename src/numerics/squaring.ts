@@ -94,7 +94,8 @@ function keepSums(exponential: Float64Array, integral: Float64Array, { even, kep
   }
 }
 
-function product(a: Float64Array, b: Float64Array, n: number): Float64Array<ArrayBuffer> {
+/** A B of two dense n x n matrices, row-major; zeros of A cost nothing. */
+export function product(a: Float64Array, b: Float64Array, n: number): Float64Array<ArrayBuffer> {
   const c = new Float64Array(n * n);
   for (let i = 0; i < n; i++) {
     for (let k = 0; k < n; k++) {
