@@ -1,4 +1,5 @@
 import type { Duty } from "../model/duty.js";
+import { membersOf } from "../model/members.js";
 import { followedIn, isClosed, type Network } from "../model/network.js";
 import type { Report } from "../problems/report.js";
 import { nearest } from "../text/nearest.js";
@@ -35,6 +36,9 @@ export function checkDuty(network: Network, duty: Duty, report: Report): void {
   if (known.length === duty.feeds.size && (duty.chemistry || duty.feeds.size > 0)) {
     for (const feed of feeds) if (!duty.feeds.has(feed)) report("feed-not-given", duty.at, { feed });
   }
+  const bodies = network.compartments.map((c) => c.name);
+  const places = [...bodies, ...network.groups.map((g) => g.name), ...network.compartments.flatMap(membersOf)];
+  for (const [name, { at }] of duty.local ?? []) look(name, at, "compartment", places);
   checkSettings(network, duty, look, report);
   for (const { at, place, what } of duty.report) {
     if (at !== undefined && what === "tracer-time") look(at, place, "outlet", outlets);

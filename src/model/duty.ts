@@ -17,6 +17,8 @@ export interface Duty {
   readonly settings: ReadonlyMap<string, Placed>;
   /** Feed concentrations: feed name -> species -> value. A species left out is not fed. */
   readonly feeds: ReadonlyMap<string, DutyFeed>;
+  /** What holds in some bodies only, by the name of a compartment, a member of one or a part. */
+  readonly local?: ReadonlyMap<string, LocalDuty>;
   /** K, everywhere (isothermal). */
   readonly temperature: Value | undefined;
   /** Dimension of the concentration of each species of the chemistry. */
@@ -33,6 +35,13 @@ export interface Placed {
 export interface DutyFeed {
   readonly at: Span;
   readonly species: ReadonlyMap<string, Placed>;
+}
+
+/** What a duty sets otherwise in one place. */
+export interface LocalDuty {
+  readonly at: Span;
+  /** Constants of the chemistry, by name. */
+  readonly constants: ReadonlyMap<string, Placed>;
 }
 
 /** A figure that a duty asks for. `at` undefined: over all outlets together. */

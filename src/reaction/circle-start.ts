@@ -1,7 +1,7 @@
 import { balanceSolver } from "../numerics/balance-solver.js";
 import type { Graph } from "../numerics/graph.js";
 import type { Pass } from "./dispersion.js";
-import type { Reactions } from "./kinetics.js";
+import type { Kinetics, Reactions } from "./kinetics.js";
 import { settleMixed } from "./mixed.js";
 
 /** Many nodes that feed one another, and what reaches them from elsewhere. Scaled concentrations, node by node. */
@@ -19,6 +19,8 @@ export interface Circle {
   readonly part: Uint8Array;
   /** What bodies that are not mixed throughout make of their inflow. */
   readonly bodies: ReadonlyMap<number, Pass>;
+  /** What reacts in each, where that is not the same everywhere. */
+  readonly cells?: readonly Kinetics[] | undefined;
 }
 
 /** Every species as if nothing reacted; one composition from everywhere stays what it is. */

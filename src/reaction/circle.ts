@@ -5,7 +5,7 @@ import { solveSmall } from "../numerics/small-dense.js";
 import { type Circle, mixtures, startOf } from "./circle-start.js";
 import type { Conserved } from "./conserved.js";
 import type { Pass } from "./dispersion.js";
-import type { Reactions } from "./kinetics.js";
+import type { Kinetics, Reactions } from "./kinetics.js";
 import { type NewtonResult, type System, solveInexactNewton } from "./newton.js";
 
 const mostSteps = 2000;
@@ -51,11 +51,14 @@ class CircleState implements System {
   private readonly made: Float64Array;
   private readonly slope: Float64Array;
   private readonly reduced: Float64Array;
+  /** What reacts everywhere, or by place in flow order. */
+  private readonly cell: Kinetics;
+  private readonly cells: readonly Kinetics[] | undefined;
 
   constructor(
     private readonly circle: Circle,
     private readonly rows: ReturnType<typeof flowRows>,
-    private readonly reactions: Reactions,
+    reactions: Reactions,
     private readonly conserved: Conserved,
     mixed: Float64Array,
     start: Float64Array,
@@ -65,6 +68,8 @@ class CircleState implements System {
     const { free, dependent, follows } = conserved;
     const [r, d] = [free.length, dependent.length];
     const { size: count, order } = rows;
+    this.cell = reactions.cell;
+    this.cells = circle.cells && Array.from(order, (node) => circle.cells?.[node] ?? reactions.cell);
     this.n = n;
     this.size = r;
     this.length = count * r;
@@ -135,7 +140,7 @@ class CircleState implements System {
     if (tau === 0) return true;
     const { made, conserved } = this;
     this.expand(p, y, p * r);
-    this.reactions.cell.production(this.all, 0, made, 0);
+    this.cellAt(p).production(this.all, 0, made, 0);
     for (let k = 0; k < r; k++) f[p * r + k] += tau * made[conserved.free[k]];
     return true;
   }
@@ -150,7 +155,7 @@ class CircleState implements System {
     for (let e = 0; e < rr; e++) reduced[e] = 0;
     if (tau > 0) {
       this.expand(p, y, p * r);
-      this.reactions.cell.jacobian(this.all, 0, this.slope, 0);
+      this.cellAt(p).jacobian(this.all, 0, this.slope, 0);
       this.reduce();
       for (let e = 0; e < rr; e++) reduced[e] *= -tau;
       for (let k = 0; k < r; k++) reduced[k * r + k] += 1 + tau * rate - own;
@@ -164,6 +169,10 @@ class CircleState implements System {
     } else for (let k = 0; k < r; k++) reduced[k * r + k] = 1 - own;
     for (let e = 0; e < rr; e++) blocks.diagonal[p * rr + e] = reduced[e];
     return true;
+  }
+
+  private cellAt(p: number): Kinetics {
+    return this.cells === undefined ? this.cell : this.cells[p];
   }
 
   private bodyAt(p: number): Pass | undefined {
@@ -187,8 +196,8 @@ class CircleState implements System {
     const { size: r, x, mix, made, reduced, memory, conserved, local: step } = this;
     const at = p * r;
     this.expand(p, x, at);
-    this.reactions.cell.production(this.all, 0, made, 0);
-    this.reactions.cell.jacobian(this.all, 0, this.slope, 0);
+    this.cellAt(p).production(this.all, 0, made, 0);
+    this.cellAt(p).jacobian(this.all, 0, this.slope, 0);
     this.reduce();
     for (let e = 0; e < r * r; e++) reduced[e] *= -memory[p];
     for (let k = 0; k < r; k++) {

@@ -3,18 +3,28 @@ import type { Chemistry } from "../model/chemistry.js";
 import type { Duty } from "../model/duty.js";
 import { type Dimension, dimensions } from "../units/dimension.js";
 import { bindKinetics, type Reactions } from "./kinetics.js";
+import { placesByNode } from "./places.js";
 
-/** Values to use in place of a duty's, SI, by name: `k1`, `feed.A`, `temperature`. Unknown names have no effect. */
+/** Values to use in place of a duty's, SI, by name: `k1`, `feed.A`, `bulk.k1` (local), `temperature`. Unknown names have no effect. */
 export type DutySettings = Readonly<Record<string, number>>;
 
 /** A duty in numbers: what each feed of a plant brings, and the kinetics at its constants and temperature. */
 export interface Conditions {
   readonly species: readonly string[];
-  /** Per feed of the plant, concentration of each species, SI. */
+  /** Components of a mixture. */
+  readonly size: number;
+  /** Per feed of the plant, each component of what it brings, SI. */
   readonly feeds: readonly Float64Array[];
-  /** Concentration (SI) that counts as 1, per species. */
+  /** What counts as 1, per component, SI. */
   readonly scale: Float64Array;
+  /** Where nothing of its own holds. */
   readonly reactions: Reactions;
+  /** What reacts in a node of the plant: `reactions` unless the duty says otherwise for the body that it belongs to. */
+  reactionsAt(node: number): Reactions;
+  /** True where that differs from node to node. */
+  readonly varied: boolean;
+  /** What one unit of each reaction makes, anywhere in the plant, scaled: what none of them changes only mixes. */
+  readonly numbers: readonly Float64Array[];
 }
 
 /** A quantity that a duty rests on, and how well it is known: what an interval has to carry. */
@@ -42,23 +52,51 @@ export function conditionsOf(
   );
   const scale = scales(feeds, species.length, duty.concentrations);
   const reacting = chemistry ?? { species, reactions: [] };
-  const constants = chemistry ? constantsOf(chemistry, duty, settings) : [];
-  const reactions = {
-    cell: bindKinetics(reacting, constants, scale, "limited"),
-    tube: bindKinetics(reacting, constants, scale, "cut"),
+  const reactionsWith = (places: readonly string[]): Reactions => {
+    const constants = chemistry ? constantsOf(chemistry, duty, settings, places) : [];
+    const cell = bindKinetics(reacting, constants, scale, "limited");
+    return { cell, tube: bindKinetics(reacting, constants, scale, "cut"), pocket: cell };
   };
-  return { species, feeds, scale, reactions };
+  const reactions = reactionsWith([]);
+  const placed = placesByNode(plant, [...(duty.local?.keys() ?? [])]);
+  const own = new Map([...new Set(placed.values())].map((places) => [places, reactionsWith(places)]));
+  return {
+    species,
+    size: species.length,
+    feeds,
+    scale,
+    reactions,
+    reactionsAt: (node) => own.get(placed.get(node) ?? []) ?? reactions,
+    varied: own.size > 0,
+    numbers: [reactions, ...own.values()].flatMap(({ cell }) => cell.numbers),
+  };
 }
 
-/** Constants of a chemistry at a duty, then the temperature: the tail of an Env. SI. */
-export function constantsOf(chemistry: Chemistry, duty: Duty, settings: DutySettings = {}): Float64Array {
+/**
+ * Constants of a chemistry at a duty, then the temperature: the tail of an Env. SI.
+ * @param places names under the duty's `local:` whose constants hold, later ones before earlier ones
+ */
+export function constantsOf(
+  chemistry: Chemistry,
+  duty: Duty,
+  settings: DutySettings = {},
+  places: readonly string[] = [],
+): Float64Array {
   const n = chemistry.species.length;
   const env = new Float64Array(chemistry.temperatureSlot + 1);
+  const local = new Map(
+    places.flatMap((place) =>
+      [...(duty.local?.get(place)?.constants ?? [])].map(([name, { value }]) => [
+        name,
+        settings[`${place}.${name}`] ?? value.of([]),
+      ]),
+    ),
+  );
   // Only a chemistry that does not ask for the temperature may be without one.
   env[chemistry.temperatureSlot] = settings.temperature ?? duty.temperature?.of([]) ?? Number.NaN;
   for (const k of chemistry.order) {
     const { name, value } = chemistry.constants[k];
-    env[n + k] = settings[name] ?? duty.with.get(name)?.value.of([]) ?? value.of(env);
+    env[n + k] = local.get(name) ?? settings[name] ?? duty.with.get(name)?.value.of([]) ?? value.of(env);
   }
   return env.slice(n);
 }
@@ -83,6 +121,9 @@ export function dutyInputs(chemistry: Chemistry | undefined, duty: Duty): DutyIn
   for (const [name, { value }] of duty.settings) add(name, value.of([]), value.sd?.([]));
   for (const [feed, { species }] of duty.feeds) {
     for (const [name, { value }] of species) add(`${feed}.${name}`, value.of([]), value.sd?.([]));
+  }
+  for (const [place, { constants }] of duty.local ?? []) {
+    for (const [name, { value }] of constants) add(`${place}.${name}`, value.of([]), value.sd?.([]));
   }
   if (duty.temperature) add("temperature", duty.temperature.of([]), duty.temperature.sd?.([]));
   return inputs;

@@ -1,7 +1,7 @@
 import { Part, type Plant } from "../compile/plant.js";
 import { type BlockMatrix, block, blockMatrix, solveBlocks } from "./block-matrix.js";
 import { bodyAt } from "./bodies.js";
-import type { Reactions } from "./kinetics.js";
+import type { Conditions } from "./conditions.js";
 import type { BlockSystem } from "./newton.js";
 
 /** One link that ends inside a group: from node `from` of the group, or from outside it (-1). */
@@ -33,15 +33,14 @@ export function groupBalance(
   outside: Float64Array,
   inlets: readonly (readonly Inlet[])[],
   inflow: Float64Array,
-  reactions: Reactions,
+  { size: n, reactionsAt }: Pick<Conditions, "size" | "reactionsAt">,
 ): GroupBalance {
-  const { cell } = reactions;
-  const n = cell.size;
   const count = nodes.length;
+  const cells = Array.from(nodes, (node) => reactionsAt(node).cell);
   const { volume, part: parts } = plant.columns;
   const tau = Float64Array.from(nodes, (node, k) => volume[node] / inflow[k]);
   const part = Uint8Array.from(nodes, (node) => parts[node]);
-  const bodies = Array.from(nodes, (node) => bodyAt(plant, node, reactions));
+  const bodies = Array.from(nodes, (node) => bodyAt(plant, node, reactionsAt(node)));
   const mix = new Float64Array(n);
   const made = new Float64Array(n);
   const slope = new Float64Array(n * n);
@@ -74,7 +73,7 @@ export function groupBalance(
       for (let k = 0; k < count; k++) {
         enter(y, k);
         if (bodies[k]?.(mix) === false) return false;
-        if (part[k] === Part.Cell) cell.production(y, k * n, made, 0);
+        if (part[k] === Part.Cell) cells[k].production(y, k * n, made, 0);
         const reacting = part[k] === Part.Cell ? tau[k] : 0;
         for (let i = 0; i < n; i++) f[k * n + i] = mix[i] - y[k * n + i] + reacting * made[i];
       }
@@ -90,7 +89,7 @@ export function groupBalance(
         } else see(m, k);
         const d = minusOne(m, k);
         if (part[k] !== Part.Cell) continue;
-        cell.jacobian(y, k * n, slope, 0);
+        cells[k].jacobian(y, k * n, slope, 0);
         for (let e = 0; e < n * n; e++) d[e] += tau[k] * slope[e];
       }
       return true;

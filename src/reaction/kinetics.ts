@@ -20,10 +20,11 @@ export interface Kinetics {
   jacobian(y: ArrayLike<number>, at: number, out: Float64Array, to: number): void;
 }
 
-/** What reacts where: mixed cells limit what runs out, tubes cut it. */
+/** What reacts in one body: mixed cells limit what runs out, tubes cut it; pockets beside the flow are mixed cells. */
 export interface Reactions {
   readonly cell: Kinetics;
   readonly tube: Kinetics;
+  readonly pocket: Kinetics;
 }
 
 /**

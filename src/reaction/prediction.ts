@@ -6,7 +6,7 @@ import { type MixingBounds, mixingBounds, positionBetween } from "./bounds.js";
 import { conditionsOf, type DutySettings } from "./conditions.js";
 import { exitAge } from "./exit-age.js";
 import { type Figure, figuresOf, meanFeed, speciesFigure } from "./figures.js";
-import { noCurve, type Premises, unknownPremises } from "./premises.js";
+import { noCurve, type Premises, unknownPremises, unlikeBodies } from "./premises.js";
 import { type SteadyState, steadyState } from "./steady.js";
 import type { SteadyProgress } from "./walk.js";
 
@@ -51,6 +51,7 @@ export function predict(
     return { state, figures, bounds: figures.map(() => undefined), premises: figures.length > 0 ? noCurve : undefined };
   }
   const conditions = conditionsOf(plant, chemistry, duty, settings);
+  if (conditions.varied) return { state, figures, bounds: figures.map(() => undefined), premises: unlikeBodies };
   const known = new Map<string | undefined, MixingBounds | undefined>();
   const boundsAt = (outlet: string | undefined): MixingBounds | undefined => {
     if (!known.has(outlet)) known.set(outlet, mixingBounds(plant, conditions, exitAge(exitCurve(plant, outlet))));

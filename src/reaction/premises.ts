@@ -25,6 +25,13 @@ export const noCurve: Premises = {
   says: "The bounds were not computed: the network has more cells than their exit-age curve is worked out for.",
 };
 
+/** Where bodies have kinetics of their own. */
+export const unlikeBodies: Premises = {
+  bound: "no",
+  rate: "not checked",
+  says: "The bounds were not computed: constants differ from place to place (`local:`), so what the curve alone allows does not bound the vessel.",
+};
+
 const samples = 200;
 
 /**

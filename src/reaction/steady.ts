@@ -69,7 +69,8 @@ export function steadyState(
 }
 
 /** Back to SI, with the balances of the whole plant. */
-function summary(plant: Plant, { species, feeds, scale, reactions }: Conditions, walk: Walk): SteadyState {
+function summary(plant: Plant, conditions: Conditions, walk: Walk): SteadyState {
+  const { species, feeds, scale, reactionsAt } = conditions;
   const n = species.length;
   const sum = (add: (total: Float64Array) => void): Float64Array => {
     const total = new Float64Array(n);
@@ -89,7 +90,7 @@ function summary(plant: Plant, { species, feeds, scale, reactions }: Conditions,
     });
   const fed = carried(inPorts);
   const left = carried(outPorts);
-  const made = sum((total) => addMade(total, plant, walk, reactions.cell));
+  const made = sum((total) => addMade(total, plant, walk, reactionsAt));
   for (let i = 0; i < n; i++) made[i] *= scale[i];
   const closure = fed.map((f, i) => (f + made[i] - left[i]) / (Math.max(f, left[i]) || 1));
   return {
@@ -117,7 +118,7 @@ function addMade(
   total: Float64Array,
   { columns, flow, from }: Plant,
   walk: Walk,
-  cell: Conditions["reactions"]["cell"],
+  reactionsAt: Conditions["reactionsAt"],
 ): void {
   const n = total.length;
   const { part, volume, size } = columns;
@@ -126,7 +127,7 @@ function addMade(
   for (let node = 0; node < size; node++) {
     if (!(walk.inflow[node] > 0) || part[node] === Part.Joint) continue;
     if (part[node] === Part.Cell) {
-      cell.production(walk.y, node * n, rate, 0);
+      reactionsAt(node).cell.production(walk.y, node * n, rate, 0);
       for (let i = 0; i < n; i++) total[i] += volume[node] * rate[i];
       continue;
     }

@@ -44,13 +44,13 @@ export class Walk {
     private readonly progress: ((solved: SteadyProgress) => void) | undefined,
   ) {
     const { columns, feeds, to } = plant;
-    const n = conditions.species.length;
+    const n = conditions.size;
     this.n = n;
     this.y = new Float64Array(columns.size * n);
     this.inflow = columns.inflow;
     this.into = adjacency(columns.size, to);
     this.fed = new Float64Array(columns.size * n);
-    this.conserved = conservedBy(conditions.reactions.cell.numbers, n);
+    this.conserved = conservedBy(conditions.numbers, n);
     this.place = new Int32Array(columns.size).fill(-1);
     feeds.forEach((feed, k) => {
       for (let i = 0; i < n; i++) {
@@ -80,7 +80,7 @@ export class Walk {
   private passAlone(node: number): void {
     const y = this.y.subarray(node * this.n, node * this.n + this.n);
     this.bring(node, y, 0);
-    if (bodyAt(this.plant, node, this.conditions.reactions)?.(y) === false) {
+    if (bodyAt(this.plant, node, this.conditions.reactionsAt(node))?.(y) === false) {
       this.fail(node, 0, Number.POSITIVE_INFINITY);
     }
   }
@@ -114,7 +114,7 @@ export class Walk {
       }),
     );
     const inflows = Float64Array.from(nodes, (node) => inflow[node]);
-    const balance = groupBalance(plant, nodes, outside, inlets, inflows, this.conditions.reactions);
+    const balance = groupBalance(plant, nodes, outside, inlets, inflows, this.conditions);
     const y = balance.mixed() ?? outside.slice();
     return { y, result: solveNewton(balance, y) };
   }
@@ -146,7 +146,7 @@ export class Walk {
     }
     for (const { node, flow } of plant.feeds) if (place[node] >= 0) excess[place[node]] += flow / inflow[node];
     for (let p = 0; p < nodes.length; p++) {
-      const body = bodyAt(plant, nodes[p], this.conditions.reactions);
+      const body = bodyAt(plant, nodes[p], this.conditions.reactionsAt(nodes[p]));
       if (body) bodies.set(p, body);
     }
     const circle: Circle = {
@@ -158,6 +158,7 @@ export class Walk {
       tau: Float64Array.from(nodes, (node) => volume[node] / inflow[node]),
       part: Uint8Array.from(nodes, (node) => part[node]),
       bodies,
+      cells: this.conditions.varied ? Array.from(nodes, (node) => this.conditions.reactionsAt(node).cell) : undefined,
     };
     const watch =
       this.progress &&

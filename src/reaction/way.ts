@@ -17,7 +17,7 @@ export function alongWay(
 ): Kinetics {
   const tau = volume / flow;
   const n = inFlow.size;
-  const beside = pockets && pocketed(reactions.cell, pockets, flow);
+  const beside = pockets && pocketed(reactions.pocket, pockets, flow);
   return {
     size: n,
     endures: inFlow.endures,

@@ -1,5 +1,5 @@
 import type { Chemistry } from "../model/chemistry.js";
-import type { Duty, DutyFeed, Placed } from "../model/duty.js";
+import type { Duty, DutyFeed, LocalDuty, Placed } from "../model/duty.js";
 import type { Report } from "../problems/report.js";
 import { child, type Entry, entriesOf, itemsOf, type MapNode, type Tree, textOf } from "../read/tree.js";
 import { nearest } from "../text/nearest.js";
@@ -39,6 +39,7 @@ export function resolveDuty(tree: MapNode, path: string, files: DutyFiles, repor
   const title = child(tree, "duty");
   const at = title?.at ?? tree.at;
   const given = resolveWith(child(tree, "with"), chemistry, tell);
+  const local = resolveLocal(child(tree, "local"), chemistry, tell);
   const feeds = resolveFeeds(child(tree, "feeds"), chemistry, tell);
   const species = chemistry ? chemistry.species.map((s) => s.name) : fedNames(feeds);
   const asked = itemsOf(child(tree, "report")).flatMap((item) =>
@@ -57,6 +58,7 @@ export function resolveDuty(tree: MapNode, path: string, files: DutyFiles, repor
     chemistry,
     flows,
     ...given,
+    ...(local.size > 0 ? { local } : {}),
     ...settled,
     temperature,
     report: asked,
@@ -94,6 +96,29 @@ function resolveWith(
     if (resolved) (constants.has(key.text) ? own : settings).set(key.text, { at: key.at, value: resolved });
   }
   return { with: own, settings };
+}
+
+function resolveLocal(
+  node: Tree | undefined,
+  chemistry: Chemistry | undefined,
+  report: Report,
+): Map<string, LocalDuty> {
+  const dimension = new Map(chemistry?.constants.map((c) => [c.name, c.value.dimension]));
+  const known = [...dimension.keys()];
+  const places = entriesOf(node).map(({ key: place, value: inner }): [string, LocalDuty] => {
+    const constants = entriesOf(inner).flatMap(({ key, value }): [string, Placed][] => {
+      const wanted = dimension.get(key.text);
+      if (!wanted) {
+        const near = nearest(key.text, known);
+        report("unknown-place", key.at, { name: key.text, nearest: near, wanted: "constant of the chemistry", known });
+        return [];
+      }
+      const resolved = resolveValue(value, wanted, emptyScope, report);
+      return resolved ? [[key.text, { at: key.at, value: resolved }]] : [];
+    });
+    return [place.text, { at: place.at, constants: new Map(constants) }];
+  });
+  return new Map(places);
 }
 
 function resolveFeeds(node: Tree | undefined, chemistry: Chemistry | undefined, report: Report): Map<string, DutyFeed> {

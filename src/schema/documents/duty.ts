@@ -44,7 +44,11 @@ export const dutyShape = record({
     example: "[conversion of A, yield of P from A]",
     shape: list(text),
   },
-  local: later("Constants that hold in some compartments only."),
+  local: {
+    says: "Constants of the chemistry that hold in some places only (a catalyst, a lamp, an aerator): by the name of a compartment, of a member (`chain.2`) or of a part, whose bodies then all have them. A narrower place counts before a wider one, both before `with`. Pockets react as the body they belong to.",
+    example: "{bulk: {k1: 3 L/mol/min}}",
+    shape: named(named(quantity()), "dotted"),
+  },
   heat: later("Heat balances: adiabatic or with jackets."),
   contents: later("Where a transient starts."),
 });
