@@ -1,5 +1,6 @@
 import { kindValues } from "../compile/evaluate.js";
 import type { Plant, PlantStream } from "../compile/plant.js";
+import { partingsOf } from "../compile/sends.js";
 import type { Compartment } from "../model/network.js";
 import { dimensions } from "../units/dimension.js";
 import { pastPorts } from "./part-ports.js";
@@ -24,17 +25,18 @@ export function flowSheet(plant: Plant, wanted: SheetOptions = {}): FlowSheet {
   const marked = new Set([...(options.injections ?? []), ...(options.probes ?? []), ...(options.notes?.keys() ?? [])]);
   const { streams, passed } = pastPorts(plant, marked);
   const units = { volume: network.units.unitFor(dimensions.volume), flow: network.units.unitFor(dimensions.flow) };
+  const sent = taken(plant);
   const named = (name: string, role: BodyRole): SheetBody => withOptions({ name, volume: 0, role }, options);
   const bodies = [
     ...plant.feeds.map((f) => named(f.name, "feed")),
     ...network.compartments.filter((c) => !passed.has(c.name)).map((c) => withOptions(bodyOf(c, plant), options)),
-    ...plant.outlets.map((o) => named(o.name, "outlet")),
+    ...plant.outlets.map((o) => withTaken(named(o.name, "outlet"), streams, sent)),
   ];
   return {
     title: network.title,
     says: vesselLine(plant, units),
     bodies,
-    streams: streamsOf(streams, bodies, units.flow, options),
+    streams: streamsOf(streams, bodies, units.flow, options, sent),
     ...(network.groups.length > 0 ? { groups: groupsOf(plant, passed) } : {}),
     units,
   };
@@ -82,6 +84,7 @@ function streamsOf(
   bodies: readonly SheetBody[],
   unit: SheetUnit,
   { accents }: SheetOptions,
+  sent: ReadonlyMap<string, string>,
 ): readonly SheetStream[] {
   const role = new Map(bodies.map((b) => [b.name, b.role]));
   const onward = streams.filter((s) => s.role === "forward");
@@ -91,15 +94,44 @@ function streamsOf(
     const alone =
       (role.get(s.from) === "feed" && streams.filter((o) => o.from === s.from).length === 1) ||
       (role.get(s.to) === "outlet" && streams.filter((o) => o.to === s.to).length === 1 && plain(s));
+    const partly = soleInto(role.get(s.to) === "outlet" ? s.to : undefined, streams) ? undefined : sent.get(way(s));
+    const words = [alone ? toMember(s).trim() : label(s, unit) + toMember(s), partly ?? ""];
     return {
       from: s.from,
       to: s.to,
       flow: s.flow,
       role: bypass ? "bypass" : s.role,
-      label: alone ? toMember(s).trim() : label(s, unit) + toMember(s),
+      label: words.filter((w) => w !== "").join("; "),
       ...(accents?.has(`${s.from}>${s.to}`) ? { accent: true } : {}),
     };
   });
+}
+
+const way = (s: PlantStream): string => `${s.from}>${s.enters}`;
+
+/** The only stream that enters a terminal. */
+function soleInto(terminal: string | undefined, streams: readonly PlantStream[]): PlantStream | undefined {
+  const into = streams.filter((s) => s.to === terminal);
+  return into.length === 1 ? into[0] : undefined;
+}
+
+/** An outlet says itself what its only stream takes of a substance. */
+function withTaken(body: SheetBody, streams: readonly PlantStream[], sent: ReadonlyMap<string, string>): SheetBody {
+  const only = soleInto(body.name, streams);
+  const words = only && sent.get(way(only));
+  if (words === undefined) return body;
+  return { ...body, note: body.note === undefined ? words : `${words}, ${body.note}` };
+}
+
+/** What streams take of a substance that parts otherwise than the liquid does there: "solids 4 %". By `from>the body or member it enters`. */
+function taken(plant: Plant): ReadonlyMap<string, string> {
+  const words = new Map<string, string>();
+  for (const { from, to, of, share } of partingsOf(plant)) {
+    const before = words.get(`${from}>${to}`);
+    const own = `${of} ${amount(share, { name: "%", factor: 0.01 })}`;
+    words.set(`${from}>${to}`, before === undefined ? own : `${before}, ${own}`);
+  }
+  return words;
 }
 
 /** "1 L/min (10 %)": the flow, and a share or name as the file writes it. */

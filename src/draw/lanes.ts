@@ -87,7 +87,9 @@ function lanes(routed: readonly Routed[], ground: Ground): ReadonlyMap<Routed, n
   }
   const at = new Map<Routed, number>();
   const column = (name: string): number => ordered.seats.get(name)!.column;
-  const passing = routed.filter((r) => r.via === "over" || r.via === "under").sort((a, b) => a.span - b.span);
+  const passing = routed
+    .filter((r) => r.via === "over" || r.via === "under")
+    .sort((a, b) => a.span - b.span || a.outer - b.outer);
   for (const r of passing) {
     const [first, last] = [2 * column(r.from) + 2, 2 * column(r.to)];
     const passed = Array.from({ length: Math.abs(last - first) + 1 }, (_, k) => Math.min(first, last) + k);

@@ -1,4 +1,13 @@
-import { coordSimplex, decrossTwoLayer, graph, layeringLongestPath, type MutGraphNode, sugiyama } from "d3-dag";
+import {
+  coordSimplex,
+  decrossTwoLayer,
+  graph,
+  layeringLongestPath,
+  type MutGraphNode,
+  type SugiNode,
+  sugiyama,
+} from "d3-dag";
+import { type Lane, untangle } from "./untangle.js";
 
 export interface Edge {
   readonly from: string;
@@ -30,8 +39,14 @@ export interface Ordered {
  * @param names every block, in the order of the file
  * @param edges streams between them, free of circles
  * @param last  blocks that belong into the last column (outlets)
+ * @param passing streams that will run above or below all that they pass
  */
-export function orderBlocks(names: readonly string[], edges: readonly Edge[], last: ReadonlySet<string>): Ordered {
+export function orderBlocks(
+  names: readonly string[],
+  edges: readonly Edge[],
+  last: ReadonlySet<string>,
+  passing: readonly Lane[] = [],
+): Ordered {
   const column = columnsOf(names, edges, last);
   const dag = graph<string, undefined>();
   const nodes = new Map<string, MutGraphNode<string, undefined>>();
@@ -56,12 +71,19 @@ export function orderBlocks(names: readonly string[], edges: readonly Edge[], la
   });
   if (names.length === 0) return { seats: new Map(), columns: [], ways };
   // every edge spans one column now and all sources but loose ones stand in column 0: longest paths give our columns again
-  sugiyama()
-    .layering(layeringLongestPath())
-    .decross(decrossTwoLayer())
-    .coord(coordSimplex())
-    .nodeSize([1, 1])
-    .gap([1, 1])(dag);
+  const steps = ways.flatMap((way) => way.slice(1).map((to, k) => ({ from: way[k], to })));
+  const twoLayer = decrossTwoLayer();
+  const decross = (layers: SugiNode<string, undefined>[][]): void => {
+    twoLayer(layers);
+    // what stands loose may have links over several columns: their pieces keep a name of their own
+    const named = layers.flat().map((n, k) => [n.data.role === "node" ? n.data.node.data : `loose ${k}`, n] as const);
+    const byId = new Map(named);
+    const idOf = new Map(named.map(([id, n]) => [n, id]));
+    const ids = layers.map((layer) => layer.map((n) => idOf.get(n)!));
+    untangle(ids, steps, passing);
+    for (const [c, order] of ids.entries()) layers[c].splice(0, order.length, ...order.map((id) => byId.get(id)!));
+  };
+  sugiyama().layering(layeringLongestPath()).decross(decross).coord(coordSimplex()).nodeSize([1, 1]).gap([1, 1])(dag);
   const columns: string[][] = [];
   const inOrder = [...nodes].sort(([, a], [, b]) => a.x - b.x);
   const seats = new Map<string, Seat>();

@@ -11,7 +11,8 @@ import { framesAround } from "./part-frames.js";
 import { type Ports, portsOf, type Routed, routeTrips } from "./ports.js";
 import { amount, type Scale } from "./scale.js";
 import type { FlowSheet } from "./sheet.js";
-import { itinerary } from "./trips.js";
+import { itinerary, type Trip } from "./trips.js";
+import type { Lane } from "./untangle.js";
 
 /** A stream in its place. */
 export interface Ribbon extends Routed {
@@ -40,7 +41,7 @@ export function placeBlocks(sheet: FlowSheet, scale: Scale): Placing {
   const { trips, blocks: names, hanging, edges } = itinerary(sheet, scale);
   const role = new Map(sheet.bodies.map((b) => [b.name, b.role]));
   const outlets = new Set(names.filter((name) => role.get(name) === "outlet"));
-  const ordered = orderBlocks(names, edges, outlets);
+  const ordered = orderBlocks(names, edges, outlets, lanesOf(trips));
   const routed = routeTrips(trips, ordered);
   const ports = new Map(names.map((n) => [n, portsOf(n, routed, ordered, role.get(n) === "junction")]));
   const blocks = new Map(names.map((n) => [n, blockOf(n, sheet, scale, ports.get(n)!, routed, hanging)]));
@@ -77,6 +78,12 @@ export function placeBlocks(sheet: FlowSheet, scale: Scale): Placing {
     }),
   };
 }
+
+const lanesOf = (trips: readonly Trip[]): readonly Lane[] =>
+  trips.flatMap(({ role, stream: { from, to } }): Lane[] => {
+    if (role === "bypass") return [{ from, to, side: "over" }];
+    return role === "recycle" ? [{ from, to, side: "under" }] : [];
+  });
 
 /** What a ribbon covers. */
 export function ribbonBox({ spine, trip }: Ribbon): Box {

@@ -14,6 +14,8 @@ export interface Routed {
   readonly to: string;
   /** Columns passed; a longer way runs further out. */
   readonly span: number;
+  /** Of ways over or under as long as one another, the larger runs further out: what starts beyond the other. */
+  readonly outer: number;
   /** Does it go against the flow? */
   readonly back: boolean;
 }
@@ -38,9 +40,10 @@ export function routeTrips(trips: readonly Trip[], ordered: Ordered): readonly R
   return trips.map((trip): Routed => {
     const { from, to } = trip.stream;
     const distance = column(to) - column(from);
-    const plain = { trip, way: [] as readonly string[], from, to, span: Math.abs(distance), back: false };
+    const over = ordered.seats.get(from)!.rank;
+    const plain = { trip, way: [] as readonly string[], from, to, span: Math.abs(distance), outer: -over, back: false };
     if (trip.role === "forward") return { ...plain, via: "gaps", way: ordered.ways[next++] };
-    if (trip.role === "bypass") return { ...plain, via: "over" };
+    if (trip.role === "bypass") return { ...plain, via: "over", outer: over };
     if (trip.role === "recycle") return { ...plain, via: "under", back: true };
     if (distance === 0) return { ...plain, via: "side" };
     const ends = distance > 0 ? { from, to } : { from: to, to: from };
@@ -52,7 +55,7 @@ export function routeTrips(trips: readonly Trip[], ordered: Ordered): readonly R
 /** Outer lanes first; the order is the same for ports, tracks and lanes, so that they do not cross. */
 export function outerFirst(routed: readonly Routed[]): readonly Routed[] {
   const at = new Map(routed.map((r, k) => [r, k]));
-  return [...routed].sort((a, b) => b.span - a.span || at.get(b)! - at.get(a)!);
+  return [...routed].sort((a, b) => b.span - a.span || b.outer - a.outer || at.get(b)! - at.get(a)!);
 }
 
 /** Stacks the streams of one block: lanes over it on top, onward streams by where they go, lanes under it below. */

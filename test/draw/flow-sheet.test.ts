@@ -1,3 +1,4 @@
+import { readFileSync } from "node:fs";
 import { describe, expect, test } from "vitest";
 import { compile } from "../../src/compile/compile.js";
 import { flowSheet } from "../../src/draw/flow-sheet.js";
@@ -49,4 +50,14 @@ describe("a flow sheet says what the file says", () => {
       "vessel 1000 L, of which 50 L out of reach; feed 10 L/min; mean time 95 min",
     );
   });
+});
+
+test("what a substance does otherwise than the liquid stands on the stream, or at the outlet that it alone reaches", () => {
+  const path = "networks/tour/settler.yaml";
+  const { document } = parseNetwork(readFileSync(path, "utf8"), { path, read: () => undefined });
+  const { bodies, streams } = flowSheet(compile(document!, { caught: 0.9 }).plant!);
+  const note = (name: string) => bodies.find((b) => b.name === name)?.note?.replaceAll("\u2009", " ");
+  expect([note("effluent"), note("waste"), note("feed")]).toEqual(["solids 10 %", "solids 4 %", undefined]);
+  const back = streams.find((s) => s.from === "settler" && s.to === "tank")?.label.replaceAll("\u2009", " ");
+  expect(back).toBe("5 m³/h; solids 86 %");
 });
