@@ -121,7 +121,11 @@ export interface Prediction {
   readonly bounds?: { readonly segregated: number; readonly maximumMixedness: number };
   /** Why there are no bounds, or what follows from where the value lies between them. */
   readonly boundsSay?: string;
-  /** Which inputs the spread goes with, most first; shares 0 to 1. */
+  /** What to measure better: "k2 holds 71 % of what is unsure: ...". */
+  readonly spreadSays?: string;
+  /** How the shares were found. */
+  readonly spreadMethod?: string;
+  /** Which inputs hold the variance, most first; shares 0 to 1. */
   readonly drivers?: readonly { readonly name: string; readonly share: number }[];
 }
 

@@ -1,16 +1,16 @@
 import { compile } from "../compile/compile.js";
+import { evaluateNames } from "../compile/evaluate.js";
 import type { Settings } from "../compile/plant.js";
 import type { Duty } from "../model/duty.js";
-import type { Network } from "../model/network.js";
 import type { ChangeDocument } from "../model/study.js";
-import { networkSettings } from "../reaction/conditions.js";
-import { type Figure, figuresOf } from "../reaction/figures.js";
-import { steadyState } from "../reaction/steady.js";
 import { applyChange } from "./change.js";
 import { betterIs } from "./direction.js";
+import { declaredDraws, declaredNames } from "./draws.js";
 import type { RivalDraws } from "./draws-of.js";
-import { sampledFigures } from "./predict.js";
+import { type Operation, operate } from "./operate.js";
 import type { ChangedFigure, ChangeOutcome, Ranked } from "./result.js";
+import { type Sample, sampledFigures } from "./sample.js";
+import { rowsFor } from "./sources.js";
 import { interval95 } from "./spread.js";
 
 /**
@@ -20,7 +20,7 @@ import { interval95 } from "./spread.js";
 export function changeOutcomes(
   ranked: Ranked,
   change: ChangeDocument,
-  duties: readonly Duty[],
+  present: ReadonlyMap<Duty, Sample>,
   draws: RivalDraws,
   seed: number,
 ): ChangeOutcome {
@@ -32,15 +32,25 @@ export function changeOutcomes(
     Object.fromEntries(Object.entries(settings).filter(([name]) => !changed.sets.has(name)));
   const { plant, problems } = compile(changed.network, keep(fit?.values ?? {}));
   if (!plant) return left(problems[0]?.message ?? "the changed vessel does not balance");
-  const after = draws.settings.map(keep);
-  const figures = duties.flatMap((duty): ChangedFigure[] => {
-    const old = figuresFor(rival.network, duty, fit?.values ?? {});
-    const now = figuresFor(changed.network, duty, keep(fit?.values ?? {}));
-    if (!old || !now) return [];
-    const [was, is] = [
-      sampledFigures(rival.network, duty, draws.settings, seed),
-      sampledFigures(changed.network, duty, after, seed),
+  // What the change brings or sets has a `±` of its own.
+  const own = new Set(rival.network.names.map((n) => n.name));
+  const env = evaluateNames(changed.network, keep(fit?.values ?? {}));
+  const brought = declaredNames(changed.network, undefined).filter((n) => !own.has(n.name) || changed.sets.has(n.name));
+  const varied = declaredDraws(
+    brought.map((n) => ({ name: n.name, value: env[n.slot], sd: n.value.sd?.(env) ?? 0 })),
+    draws.settings.length,
+    seed,
+  );
+  const after = draws.settings.map((settings, i) => ({ ...keep(settings), ...varied[i] }));
+  const figures = [...present].flatMap(([duty, sample]): ChangedFigure[] => {
+    const [today, then]: Operation[] = [
+      { network: rival.network, duty, values: fit?.values ?? {} },
+      { network: changed.network, duty, values: keep(fit?.values ?? {}) },
     ];
+    const [old, now] = [operate(today).figures, operate(then).figures];
+    if (!old || !now) return [];
+    const was = sample.values;
+    const is = sampledFigures(then, rowsFor(changed.network, duty, after, seed));
     return now.map((f, k): ChangedFigure => {
       const pairs = was.flatMap((w, i) => (w && is[i] ? [[w[k], (is[i] as number[])[k]] as const] : []));
       const differences = pairs.map(([a, b]) => b - a).filter(Number.isFinite);
@@ -61,9 +71,4 @@ export function changeOutcomes(
     });
   });
   return { change, rival, skipped: undefined, plant, figures };
-}
-
-function figuresFor(network: Network, duty: Duty, settings: Settings): Figure[] | undefined {
-  const { plant } = compile(network, { ...settings, ...networkSettings(duty) });
-  return plant && figuresOf(plant, duty, steadyState(plant, duty.chemistry, duty));
 }

@@ -1,68 +1,104 @@
 import { evaluateNames } from "../compile/evaluate.js";
 import type { Settings } from "../compile/plant.js";
 import type { Fit } from "../fit/result.js";
-import type { Network } from "../model/network.js";
-import { type Random, random } from "../numerics/random.js";
+import type { Named, Network } from "../model/network.js";
+import { normalQuantile } from "../numerics/distributions.js";
+import { random } from "../numerics/random.js";
+import { columnFor, streamSeed } from "./streams.js";
 
 const mostTries = 200;
 
 /**
- * Parameter sets that the fit leaves possible: normal around the fitted values with the fit's covariance, inside bounds
- * and `requires:`; what the data cannot tell at all is spread evenly over its bounds. Constants with a `±` vary by it.
+ * Values of a network that are possible: normal around the fitted values with the fit's covariance, inside bounds and
+ * `requires:`; what the data cannot tell at all is spread evenly over its bounds. Constants, and parameters that were not
+ * fitted, vary by their `±`.
+ * @param fit      undefined: nothing was fitted, the values of the file hold
  * @param possible says whether a set makes a vessel
  * @returns `count` sets (SI, by name), the same for the same seed; fewer where hardly any set is possible
  */
 export function parameterDraws(
   network: Network,
-  fit: Fit,
+  fit: Fit | undefined,
   count: number,
   seed: number,
   possible: (settings: Settings) => boolean,
 ): Settings[] {
-  const source = random(seed);
-  const env = evaluateNames(network, fit.values);
-  const named = new Map(network.names.map((n) => [n.name, n]));
-  const known = fit.covariance.names.filter((_, i) => Number.isFinite(fit.covariance.rows[i][i]));
-  const factor = cholesky(known.map((a) => known.map((b) => fit.covariance.rows[indexOf(fit, a)][indexOf(fit, b)])));
-  const blind = fit.covariance.names.filter((n) => !known.includes(n));
-  const bounds = (name: string): readonly [number, number] => {
-    const between = named.get(name)?.between;
-    return between ? [between[0].of(env), between[1].of(env)] : [Number.NEGATIVE_INFINITY, Number.POSITIVE_INFINITY];
-  };
-  const constants = network.names.filter((n) => n.role === "constant" && (n.value.sd?.(env) ?? 0) > 0);
-  const draw = (): Settings => {
-    const settings: Record<string, number> = { ...fit.values };
-    const z = known.map(() => source.normal());
-    known.forEach((name, i) => {
-      for (let j = 0; j <= i; j++) settings[name] += factor[i][j] * z[j];
-    });
-    for (const name of blind) {
-      const [low, high] = bounds(name);
-      if (Number.isFinite(high - low)) settings[name] = spread(low, high, named.get(name)?.spacing === "log", source);
-    }
-    for (const c of constants) settings[c.name] = env[c.slot] + (c.value.sd?.(env) ?? 0) * source.normal();
-    return settings;
-  };
-  const inside = (settings: Settings): boolean =>
-    fit.covariance.names.every((n) => settings[n] >= bounds(n)[0] && settings[n] <= bounds(n)[1]) && possible(settings);
+  const joint = jointly(network, fit, evaluateNames(network, fit?.values ?? {}));
+  const columns = new Map(joint.names.map((name) => [name, columnFor(name, count, seed)]));
   const draws: Settings[] = [];
   for (let i = 0; i < count; i++) {
-    for (let tries = 0; tries < mostTries; tries++) {
-      const settings = draw();
-      if (!inside(settings)) continue;
-      draws.push(settings);
-      break;
+    let settings = joint.at((name) => columns.get(name)?.[i] ?? 0.5);
+    if (!joint.inside(settings) || !possible(settings)) {
+      // A stream of its own for each row: that one is drawn anew moves no other.
+      const again = random(streamSeed(`row ${i}`, seed));
+      let tries = 0;
+      do {
+        const drawn = new Map(joint.names.map((name) => [name, Math.max(again.uniform(), 2 ** -53)]));
+        settings = joint.at((name) => drawn.get(name) ?? 0.5);
+      } while ((!joint.inside(settings) || !possible(settings)) && ++tries < mostTries);
+      if (tries === mostTries) continue;
     }
+    draws.push(settings);
   }
   return draws;
 }
 
-const indexOf = (fit: Fit, name: string): number => fit.covariance.names.indexOf(name);
-
-function spread(low: number, high: number, log: boolean, source: Random): number {
-  const u = source.uniform();
-  return log ? low * (high / low) ** u : low + (high - low) * u;
+/** Names of the network that a fit moved, sorted. */
+export function fittedNames(network: Network, fit: Fit | undefined): string[] {
+  const own = new Set(network.names.map((n) => n.name));
+  return (fit?.covariance.names ?? []).filter((name) => own.has(name)).sort();
 }
+
+/** Names of constants and unfitted parameters that a network declares with a `±`. */
+export function declaredNames(network: Network, fit: Fit | undefined): Named[] {
+  const env = evaluateNames(network, fit?.values ?? {});
+  const fitted = new Set(fit?.covariance.names ?? []);
+  return network.names.filter(
+    (n) => (n.role === "constant" || n.role === "parameter") && !fitted.has(n.name) && (n.value.sd?.(env) ?? 0) > 0,
+  );
+}
+
+/** All that varies in a network as one function of a number in (0, 1) for each name. Names in an order of their own. */
+function jointly(network: Network, fit: Fit | undefined, env: ArrayLike<number>) {
+  const named = new Map(network.names.map((n) => [n.name, n]));
+  const fitted = fittedNames(network, fit);
+  const variance = (a: string, b: string): number =>
+    fit?.covariance.rows[fit.covariance.names.indexOf(a)][fit.covariance.names.indexOf(b)] ?? Number.NaN;
+  const known = fitted.filter((name) => Number.isFinite(variance(name, name)));
+  const blind = fitted.filter((name) => !known.includes(name));
+  const factor = cholesky(known.map((a) => known.map((b) => variance(a, b))));
+  const declared = declaredNames(network, fit);
+  const bounds = (name: string): readonly [number, number] => {
+    const between = named.get(name)?.between;
+    return between ? [between[0].of(env), between[1].of(env)] : [Number.NEGATIVE_INFINITY, Number.POSITIVE_INFINITY];
+  };
+  const bounded = [...fitted, ...declared.filter((n) => n.between).map((n) => n.name)];
+  return {
+    names: [...fitted, ...declared.map((n) => n.name)],
+    at(uniform: (name: string) => number): Settings {
+      const settings: Record<string, number> = { ...fit?.values };
+      const z = known.map((name) => normalQuantile(uniform(name)));
+      known.forEach((name, i) => {
+        for (let j = 0; j <= i; j++) settings[name] += factor[i][j] * z[j];
+      });
+      for (const name of blind) {
+        const [low, high] = bounds(name);
+        if (Number.isFinite(high - low)) {
+          settings[name] = spread(low, high, named.get(name)?.spacing === "log", uniform(name));
+        }
+      }
+      for (const { name, slot, value } of declared) {
+        settings[name] = env[slot] + (value.sd?.(env) ?? 0) * normalQuantile(uniform(name));
+      }
+      return settings;
+    },
+    inside: (settings: Settings): boolean =>
+      bounded.every((name) => settings[name] >= bounds(name)[0] && settings[name] <= bounds(name)[1]),
+  };
+}
+
+const spread = (low: number, high: number, log: boolean, u: number): number =>
+  log ? low * (high / low) ** u : low + (high - low) * u;
 
 /** Lower factor L with L L' = C of a covariance; a direction without spread gives a row of zeros. */
 function cholesky(c: readonly (readonly number[])[]): number[][] {
@@ -78,20 +114,17 @@ function cholesky(c: readonly (readonly number[])[]): number[][] {
   return l;
 }
 
-/** Values that vary by a declared standard deviation, one set per draw; each name has a stream of its own, so draws are shared. */
-export function declaredDraws(
-  inputs: readonly { readonly name: string; readonly value: number; readonly sd: number }[],
-  count: number,
-  seed: number,
-): Settings[] {
-  const streams = inputs.map((input) => ({ input, source: random(seed + nameSeed(input.name)) }));
-  return Array.from({ length: count }, () =>
-    Object.fromEntries(streams.map(({ input, source }) => [input.name, input.value + input.sd * source.normal()])),
-  );
+/** A quantity that varies by a declared standard deviation. SI. */
+export interface Declared {
+  readonly name: string;
+  readonly value: number;
+  readonly sd: number;
 }
 
-function nameSeed(name: string): number {
-  let h = 7;
-  for (const c of name) h = (h * 31 + (c.codePointAt(0) ?? 0)) % 1_000_003;
-  return h * 1000;
+/** Values that vary by a declared standard deviation, one set per draw; each name has a stream of its own, so draws are shared. */
+export function declaredDraws(inputs: readonly Declared[], count: number, seed: number): Settings[] {
+  const columns = inputs.map(({ name }) => columnFor(name, count, seed));
+  return Array.from({ length: count }, (_, i) =>
+    Object.fromEntries(inputs.map(({ name, value, sd }, k) => [name, value + sd * normalQuantile(columns[k][i])])),
+  );
 }

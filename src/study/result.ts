@@ -7,9 +7,9 @@ import type { Trial } from "../model/trial.js";
 import type { Problem } from "../problems/problem.js";
 import type { SteadyState } from "../reaction/steady.js";
 import type { Unit } from "../units/unit.js";
-import type { Driver } from "./drivers.js";
 import type { Standing } from "./rank.js";
 import type { Residence } from "./residence.js";
+import type { Spread } from "./spread-shares.js";
 
 /** Everything that a study found out. SI, with units for people beside. */
 export interface StudyResult {
@@ -50,8 +50,8 @@ export interface Prediction {
   /** 2.5 to 97.5 % of the draws; undefined where too few draws gave a figure. */
   readonly interval95: readonly [number, number] | undefined;
   readonly bounds: Bounds | undefined;
-  /** What the spread goes with, most first. */
-  readonly drivers: readonly Driver[];
+  /** What holds its variance; undefined where nothing is unsure. */
+  readonly spread: Spread | undefined;
   readonly steady: SteadyState;
 }
 

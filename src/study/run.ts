@@ -1,6 +1,7 @@
 import { compile } from "../compile/compile.js";
 import { readMoments } from "../data/moments.js";
 import { type FitOptions, fit } from "../fit/fit.js";
+import type { Duty } from "../model/duty.js";
 import type { Rival, Study } from "../model/study.js";
 import { changeOutcomes } from "./compare.js";
 import { drawsOf, type RivalDraws } from "./draws-of.js";
@@ -8,6 +9,7 @@ import { predictDuty } from "./predict.js";
 import { standings, survives } from "./rank.js";
 import { residenceOf } from "./residence.js";
 import type { Ranked, StudyResult } from "./result.js";
+import { type Sample, sampleOf } from "./sample.js";
 import { momentsFacts } from "./trial-facts.js";
 
 export interface StudyOptions {
@@ -49,18 +51,24 @@ export function runStudy(study: Study, options: StudyOptions = {}): StudyResult 
   const ranking = withProfiles(study, ranked, options, cancelled);
   const survivors = ranking.filter((r) => r.survives && r.plant);
   const draws = new Map<Rival, RivalDraws>();
-  for (const r of survivors) if (!cancelled()) draws.set(r.rival, drawsOf(r, count, study.seed));
+  for (const r of survivors) if (!cancelled()) draws.set(r.rival, drawsOf(r.rival.network, r.fit, count, study.seed));
   const alive = survivors.filter((r) => draws.has(r.rival));
+  const samples = new Map<Rival, Map<Duty, Sample>>();
   const predictions = alive.flatMap((r, i) =>
     study.duties.flatMap((duty) => {
       tell({ stage: "predicting", what: duty.title, done: 0.8 + (0.1 * i) / alive.length });
-      return cancelled() ? [] : predictDuty(r, duty, draws.get(r.rival) as RivalDraws, study.seed);
+      if (cancelled()) return [];
+      const operation = { network: r.rival.network, duty, values: r.fit?.values ?? {} };
+      const sample = sampleOf(operation, draws.get(r.rival)?.settings ?? [], study.seed);
+      samples.set(r.rival, (samples.get(r.rival) ?? new Map()).set(duty, sample));
+      return predictDuty(r, sample);
     }),
   );
   const changes = alive.flatMap((r, i) =>
     study.changes.flatMap((change) => {
       tell({ stage: "comparing", what: change.title, done: 0.9 + (0.1 * i) / alive.length });
-      return cancelled() ? [] : [changeOutcomes(r, change, study.duties, draws.get(r.rival) as RivalDraws, study.seed)];
+      const present = samples.get(r.rival) ?? new Map<Duty, Sample>();
+      return cancelled() ? [] : [changeOutcomes(r, change, present, draws.get(r.rival) as RivalDraws, study.seed)];
     }),
   );
   const best = alive[0];

@@ -1,4 +1,5 @@
 import type { Bounds, ChangedFigure, ChangeOutcome, Prediction, Ranked, StudyResult } from "../../study/result.js";
+import type { Spread } from "../../study/spread-shares.js";
 import { inUnit, type Unit } from "../../units/unit.js";
 import { fitJson } from "./fit.js";
 import { momentsResultJson } from "./moments.js";
@@ -39,7 +40,7 @@ function rankedJson({ rival, fit, standing, survives, problems }: Ranked): objec
   };
 }
 
-function predictionJson({ duty, rival, name, value, unit, interval95, bounds, drivers }: Prediction): object {
+function predictionJson({ duty, rival, name, value, unit, interval95, bounds, spread }: Prediction): object {
   return {
     duty: duty.title,
     network: rival.path,
@@ -47,7 +48,29 @@ function predictionJson({ duty, rival, name, value, unit, interval95, bounds, dr
     ...quantity(value, unit),
     interval95: intervalJson(interval95, unit),
     bounds: bounds ? boundsJson(bounds, unit) : null,
-    drivers,
+    ...spreadJson(spread, unit),
+  };
+}
+
+/** What holds the variance: shares are fractions. */
+function spreadJson(spread: Spread | undefined, unit: Unit): object {
+  if (!spread) return { drivers: [] };
+  const { method, explained, sd, linearSd, drivers } = spread;
+  return {
+    drivers: drivers.map(({ kind, name, vessel, duty, share, total, linear }) => ({
+      name,
+      kind,
+      of: [...vessel, ...duty],
+      share,
+      ...(total === undefined ? {} : { total }),
+      linear: linear === undefined ? null : finite(linear),
+    })),
+    spread: {
+      method,
+      explained: explained === undefined ? null : finite(explained),
+      standardDeviation: finite(sd / unit.factor),
+      linear: linearSd === undefined ? null : finite(linearSd / unit.factor),
+    },
   };
 }
 

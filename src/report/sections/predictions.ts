@@ -26,7 +26,7 @@ export function predictionsSection({ predictions }: StudyReport): Html {
     { head: "value", number: true },
     { head: "95 % interval", number: true },
     { head: "segregated to maximum mixedness" },
-    ...(driven ? [{ head: "the spread goes with" }] : []),
+    ...(driven ? [{ head: "what is unsure rests with" }] : []),
   ];
   const drawn = grouped(predictions, (p) => `${p.name}, ${p.estimate.unit}`).map(([quantity, list], k) => {
     const intervals = { title: quantity, quantity, rows: list.flatMap(predictionRow) };
@@ -60,12 +60,14 @@ const mostDrivers = 6;
 function spreads(predictions: readonly Prediction[]): Html[] {
   const told = predictions.filter((p) => (p.drivers?.length ?? 0) > 1).slice(0, mostSpreads);
   return told.map((p, k) => {
-    const title = `${p.duty}: what the spread of ${p.name} goes with`;
+    const title = `${p.duty}: what holds the uncertainty of ${p.name}`;
     const rows = (p.drivers ?? []).slice(0, mostDrivers).map((d) => ({ label: d.name, percent: 100 * d.share }));
+    const says = p.spreadSays === undefined ? "" : `: ${p.spreadSays}`;
+    const how = p.spreadMethod === undefined ? "" : ` (${p.spreadMethod})`;
     return figure({
       name: `spread-${k + 1}`,
-      ...plotBars({ title, quantity: "share of the spread that goes with it, %", rows }, { untitled: true }),
-      caption: `${title} (squared rank correlation over the draws; inputs that move together share what they hold). Measure the first better to narrow the interval.`,
+      ...plotBars({ title, quantity: "share of the variance, %", rows }, { untitled: true }),
+      caption: `${title}${says}${how}.`,
     });
   });
 }

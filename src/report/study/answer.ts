@@ -1,6 +1,7 @@
 import type { ChangedFigure, ChangeOutcome, StudyResult } from "../../study/result.js";
 import { chance, estimateLine } from "../digits.js";
 import type { AnswerLine } from "../input.js";
+import { spreadWords } from "./driver-words.js";
 import { differenceEstimate, estimate, readingUnit } from "./estimate.js";
 import { traitsOf } from "./traits.js";
 
@@ -21,6 +22,7 @@ export function answerOf(result: StudyResult): AnswerLine[] {
     { about: "How sure", says: sure(result) },
     ...makes(result).map((says) => ({ about: "What it makes", says })),
     ...bestChange(result).map((says) => ({ about: "What to do", says })),
+    ...measure(result).map((says) => ({ about: "What to measure", says })),
     { about: "Still open", says: open(result) },
   ];
 }
@@ -80,6 +82,13 @@ function bestChange(result: StudyResult): string[] {
   const by = estimateLine(differenceEstimate(f.value - f.before, f.difference95, unit));
   const sure = f.probabilityBetter === undefined ? "" : `; chance of being better ${chance(f.probabilityBetter)}`;
   return [`${none}${c.change.title}: ${f.name} from ${now} to ${then}, by ${by}${sure}.`];
+}
+
+/** Of the first figure of the first duty: what holds its uncertainty. */
+function measure(result: StudyResult): string[] {
+  const p = result.predictions.find((x) => x.rival === result.ranking[0].rival);
+  const says = spreadWords(p?.spread);
+  return p && says !== undefined ? [`Of ${p.name}, ${says}.`] : [];
 }
 
 const gain = (f: ChangedFigure): number =>

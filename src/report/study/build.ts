@@ -1,4 +1,5 @@
 import type { Ranked, StudyResult } from "../../study/result.js";
+import type { Spread } from "../../study/spread-shares.js";
 import { dimensions } from "../../units/dimension.js";
 import { inUnit } from "../../units/unit.js";
 import type {
@@ -13,6 +14,7 @@ import type {
 } from "../input.js";
 import { answerOf } from "./answer.js";
 import { dataQuality, findingsOf } from "./data.js";
+import { driverName, methodWords, spreadWords } from "./driver-words.js";
 import { estimate, parameterEstimate, readingUnit } from "./estimate.js";
 import { curveFigures, rivalFigures, vesselFigure } from "./figures.js";
 import { identifiabilityOf } from "./identifiability.js";
@@ -108,7 +110,17 @@ function predictionRow(p: StudyResult["predictions"][number]): Prediction {
       ? { bounds: { segregated: inUnit(b.segregated, unit), maximumMixedness: inUnit(b.maximumMixedness, unit) } }
       : {}),
     ...(b?.says ? { boundsSay: b.says } : {}),
-    drivers: p.drivers,
+    ...spreadRow(p.spread),
+  };
+}
+
+function spreadRow(spread: Spread | undefined): Pick<Prediction, "drivers" | "spreadSays" | "spreadMethod"> {
+  const says = spreadWords(spread);
+  if (!spread || says === undefined) return {};
+  return {
+    drivers: spread.drivers.map((d) => ({ name: driverName(d), share: d.share })),
+    spreadSays: says,
+    spreadMethod: methodWords(spread),
   };
 }
 
