@@ -6,7 +6,7 @@ import { sobolIndices } from "../../src/numerics/sobol-indices.js";
 import { stratified } from "../../src/numerics/stratified.js";
 
 /** T. Ishigami, T. Homma, Proc. ISUMA '90 (IEEE 1990) 398-403, with a = 7 and b = 0.1; its indices are closed forms. */
-const ishigami = ([x, y, z]: ArrayLike<number>): number =>
+const ishigami = ([x, y, z]: readonly number[]): number =>
   Math.sin(x) + 7 * Math.sin(y) ** 2 + 0.1 * z ** 4 * Math.sin(x);
 const p4 = Math.PI ** 4;
 const variance = 49 / 8 + (0.1 * p4) / 5 + (0.01 * p4 * p4) / 18 + 0.5;
