@@ -1,9 +1,11 @@
-import { type Ellipse, type MixedRows, settle } from "./mixed-rows.js";
+import type { Ellipse, MixedRows } from "./mixed-rows.js";
+import { RowsByWidth } from "./rows-by-width.js";
+import { roomFor, Workspace } from "./wasm/workspace.js";
 
 /** What is looked at: a sum over the unknowns, of each polynomial's vector one number. */
 interface Look {
-  /** The unknown; -1: the sum over all states, each times its volume. */
-  readonly unknown: number;
+  /** Place of the unknown; -1: the sum over all states, each times its volume. */
+  readonly at: number;
   /** Bound of the look over the norm of a vector. */
   readonly norm: number;
   scalars: Float64Array;
@@ -24,9 +26,12 @@ export class EllipseFlow {
   private readonly looks: readonly Look[];
   /** Root of the sum of weight times square, of the vectors after each block. */
   private norms = new Float64Array(0);
+  private readonly wide: RowsByWidth;
   private now: Float64Array;
   private before: Float64Array;
-  private readonly scaled: Float64Array;
+  /** By place, as the vectors are. */
+  private readonly volume: Float64Array;
+  private readonly weight: Float64Array;
 
   /**
    * @param start    x, as long as the matrix
@@ -36,26 +41,30 @@ export class EllipseFlow {
    * @param watch    told after each block how many there are; true ends the work, and sums then are what they are
    */
   constructor(
-    private readonly rows: MixedRows,
+    rows: MixedRows,
     private readonly ellipse: Ellipse,
     start: Float64Array,
     unknowns: readonly number[],
-    private readonly volume: Float64Array,
-    private readonly weight = volume,
+    volume: Float64Array,
+    weight = volume,
     private readonly watch: (made: number) => boolean = () => false,
   ) {
-    const { states, start: begin, column, value } = rows;
+    const { size, states } = rows;
     const { half: a, height: b } = ellipse;
-    this.scaled = value.slice();
+    const workspace = new Workspace(RowsByWidth.room(rows) + roomFor({ floats: [size, size, states] }));
+    this.wide = new RowsByWidth(rows, workspace, (value, diagonal) => (2 / (a + b)) * (value + (diagonal ? a : 0)));
+    const { place } = this.wide;
+    this.now = workspace.floats(size);
+    this.before = workspace.floats(size);
+    this.volume = workspace.floats(states);
+    this.weight = weight === volume ? this.volume : new Float64Array(states);
+    for (let i = 0; i < size; i++) this.now[place[i]] = start[i];
     for (let i = 0; i < states; i++) {
-      for (let e = begin[i]; e < begin[i + 1]; e++) {
-        this.scaled[e] = (2 / (a + b)) * (value[e] + (column[e] === i ? a : 0));
-      }
+      this.volume[place[i]] = volume[i];
+      this.weight[place[i]] = weight[i];
     }
-    this.now = start.slice();
-    this.before = new Float64Array(start.length);
     this.looks = [...unknowns, -1].map((unknown) => ({
-      unknown,
+      at: unknown < 0 ? -1 : place[unknown],
       norm: unknown < 0 ? Math.sqrt(volume.reduce((sum, v) => sum + v, 0)) : boundOf(rows, unknown, weight),
       scalars: new Float64Array(0),
     }));
@@ -90,7 +99,7 @@ export class EllipseFlow {
 
   /** A block of vectors more. */
   private make(): void {
-    const { rows, ellipse, volume, weight } = this;
+    const { wide, ellipse, volume, weight } = this;
     const back = (ellipse.half - ellipse.height) / (ellipse.half + ellipse.height);
     if (this.made === this.norms.length) {
       const most = Math.max(16 * block, 2 * this.made);
@@ -100,9 +109,9 @@ export class EllipseFlow {
     const end = this.made + block;
     for (; this.made < end; this.made++) {
       const k = this.made;
-      settle(rows, this.now);
-      for (const look of this.looks) if (look.unknown >= 0) look.scalars[k] = this.now[look.unknown];
-      const total = step(rows, this.scaled, this.now, this.before, k === 0 ? 0.5 : 1, k === 0 ? 0 : back, volume);
+      wide.settle(this.now);
+      for (const look of this.looks) if (look.at >= 0) look.scalars[k] = this.now[look.at];
+      const total = wide.step(this.now, this.before, k === 0 ? 0.5 : 1, k === 0 ? 0 : back, volume);
       this.looks[this.looks.length - 1].scalars[k] = total;
       [this.now, this.before] = [this.before, this.now];
     }
@@ -125,35 +134,6 @@ function longer(old: Float64Array, length: number): Float64Array<ArrayBuffer> {
   const next = new Float64Array(length);
   next.set(old);
   return next;
-}
-
-/** before <- forward * (scaled now) - back * before; returns the sum of volume times now. Rows as lattices have them go at once. */
-function step(
-  { states, start, column: c }: MixedRows,
-  scaled: Float64Array,
-  now: Float64Array,
-  before: Float64Array,
-  forward: number,
-  back: number,
-  volume: Float64Array,
-): number {
-  let [e, total] = [0, 0];
-  for (let i = 0; i < states; i++) {
-    const end = start[i + 1];
-    let sum = 0;
-    if (end - e === 7) {
-      const one = scaled[e] * now[c[e]] + scaled[e + 1] * now[c[e + 1]] + scaled[e + 2] * now[c[e + 2]];
-      const two = scaled[e + 3] * now[c[e + 3]] + scaled[e + 4] * now[c[e + 4]];
-      sum = one + two + (scaled[e + 5] * now[c[e + 5]] + scaled[e + 6] * now[c[e + 6]]);
-      e = end;
-    } else {
-      for (; e + 1 < end; e += 2) sum += scaled[e] * now[c[e]] + scaled[e + 1] * now[c[e + 1]];
-      if (e < end) sum += scaled[e] * now[c[e++]];
-    }
-    total += volume[i] * now[i];
-    before[i] = forward * sum - back * before[i];
-  }
-  return total;
 }
 
 /** Root of the sum of weight times square. */
