@@ -1,3 +1,4 @@
+import { type Chain, correlationTimes, entries, links } from "../numerics/autoregression.js";
 import type { Block } from "./observations.js";
 
 /** How far the residuals hang together. */
@@ -6,35 +7,91 @@ export interface Autocorrelation {
   readonly lag1: number;
   /** lag1 in standard deviations of what independent residuals give, sqrt(n) lag1. */
   readonly deviations: number;
+  /** True where some reading's residuals hang together. */
   readonly significant: boolean;
-  /** n (1 - lag1) / (1 + lag1) where significant, else n. */
+  /** Independent readings that would tell a mean as well; n where none hang together. */
   readonly effective: number;
-  /** What standard errors grow by: sqrt((1 + lag1) / (1 - lag1)), 1 where not significant. */
-  readonly widening: number;
+  /** The same for a variance. */
+  readonly effectiveForVariance: number;
+  /** The readings that hang together, in the order of the blocks. */
+  readonly strands: readonly Strand[];
+}
+
+/** The residuals of one reading, which hang together as exp(-gap / time). */
+export interface Strand {
+  readonly block: number;
+  /** s. */
+  readonly time: number;
+  /** Twice the log-likelihood gained, restricted to what the fit left. */
+  readonly gain: number;
+  /** Places in the list of all observations, ascending in time; censored ones are left out. */
+  readonly rows: Int32Array;
+  /** Correlation of each with the one before. */
+  readonly phi: Float64Array;
 }
 
 /**
- * Lag-1 autocorrelation of weighted residuals within each reading, neighbours in time, and the effective sample size of a
- * first-order autoregression (Bayley & Hammersley, Suppl. J. R. Statist. Soc. 8 (1946) 184-197). Only a positive correlation beyond
- * two standard deviations counts.
+ * How the residuals of each reading hang together: a first-order autoregression in time against independent residuals, chosen
+ * where AICc is the smaller, or as the reading's `correlated:` says.
  * @param residuals  one per observation, any common scale
+ * @param basis      orthonormal columns that the fit took out of them, longer by the priors or not at all
+ * @see Burnham & Anderson, Model Selection and Multimodel Inference, 2nd ed. 2002, section 2.4
  */
-export function autocorrelationOf(blocks: readonly Block[], residuals: Float64Array): Autocorrelation {
-  let square = 0;
-  let product = 0;
-  let n = 0;
-  for (const b of blocks) {
-    const order = [...b.time.keys()].filter((i) => !b.censored?.[i]).sort((i, j) => b.time[i] - b.time[j]);
-    for (let k = 0; k < order.length; k++) {
-      const e = residuals[b.from + order[k]];
-      square += e * e;
-      if (k > 0) product += e * residuals[b.from + order[k - 1]];
-    }
-    n += order.length;
+export function autocorrelationOf(
+  blocks: readonly Block[],
+  residuals: Float64Array,
+  basis: readonly Float64Array[],
+): Autocorrelation {
+  const chains = blocks.map(chainOf);
+  const n = chains.reduce((sum, c) => sum + c.rows.length, 0);
+  const asked = blocks.map((b, k) => (b.declared.correlated === undefined ? chains[k] : none));
+  const found = correlationTimes(residuals, basis, asked);
+  const unknowns = basis.length + 1;
+  const left = n - unknowns - 2;
+  // What AICc asks of one more unknown.
+  const price = left > 0 ? 2 + (4 * (unknowns + 1)) / left : Number.POSITIVE_INFINITY;
+  const strands = found.flatMap(({ time, gain }, block): Strand[] => {
+    if (gain <= price) return [];
+    const { rows } = chains[block];
+    return [{ block, time, gain, rows: Int32Array.from(rows), phi: links(chains[block], time) }];
+  });
+  const lag1 = lagOne(chains, residuals);
+  const linked = new Map(strands.map((s) => [s.block, s.phi]));
+  let [effective, square] = [0, 0];
+  for (const [k, c] of chains.entries()) {
+    const count = c.rows.length;
+    const phi = linked.get(k);
+    effective += phi ? count ** 2 / entries(phi, 1) : count;
+    square += phi ? entries(phi, 2) : count;
   }
-  const lag1 = square > 0 ? Math.min(product / square, 0.999) : 0;
-  const deviations = Math.sqrt(n) * lag1;
-  const significant = deviations > 2;
-  const shrink = significant ? (1 - lag1) / (1 + lag1) : 1;
-  return { lag1, deviations, significant, effective: n * shrink, widening: 1 / Math.sqrt(shrink) };
+  return {
+    lag1,
+    deviations: Math.sqrt(n) * lag1,
+    significant: strands.length > 0,
+    effective,
+    effectiveForVariance: square > 0 ? n ** 2 / square : n,
+    strands,
+  };
+}
+
+const none: Chain = { rows: [], gaps: new Float64Array(0) };
+
+/** The seen points of a block, one after another. */
+export function chainOf(b: Block): Chain {
+  const seen = Array.from(b.time.keys()).filter((i) => !b.censored?.[i]);
+  return {
+    rows: Int32Array.from(seen, (i) => b.from + i),
+    gaps: Float64Array.from(seen, (i, k) => (k === 0 ? 0 : b.time[i] - b.time[seen[k - 1]])),
+  };
+}
+
+function lagOne(chains: readonly Chain[], residuals: Float64Array): number {
+  let [square, product] = [0, 0];
+  for (const { rows } of chains) {
+    for (let k = 0; k < rows.length; k++) {
+      square += residuals[rows[k]] ** 2;
+      if (k > 0) product += residuals[rows[k]] * residuals[rows[k - 1]];
+    }
+  }
+  return square > 0 ? product / square : 0;
 }

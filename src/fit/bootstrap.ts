@@ -1,3 +1,4 @@
+import { normalCdf, studentTQuantile } from "../numerics/distributions.js";
 import type { Unit } from "../units/unit.js";
 import type { Resampling } from "./resample.js";
 import type { Fit } from "./result.js";
@@ -19,7 +20,7 @@ export interface BootstrapParameter {
   readonly name: string;
   readonly unit: Unit;
   readonly standardError: number;
-  /** Between the 2.5th and the 97.5th percentile of the refits. */
+  /** Percentiles of the refits, 2.5 and 97.5 or so far beyond them as Student's t lies beyond the normal distribution. */
   readonly interval95: readonly [number, number];
   readonly median: number;
 }
@@ -29,7 +30,8 @@ export const fewestRefits = 40;
 
 /**
  * @param rows  values of the refits in the order of `fit.parameters`, SI; undefined where one did not converge
- * @see percentile intervals: B. Efron, R. Tibshirani, An Introduction to the Bootstrap, Chapman & Hall 1993, ch. 13
+ * @see percentile intervals: B. Efron, R. Tibshirani, An Introduction to the Bootstrap, Chapman & Hall 1993, ch. 13; moved outwards for the degrees of freedom:
+ * T. C. Hesterberg, Am. Stat. 69 (2015) 371-386
  */
 export function bootstrapOf(
   fit: Fit,
@@ -38,6 +40,7 @@ export function bootstrapOf(
   rows: readonly (readonly number[] | undefined)[],
 ): Bootstrap {
   const good = rows.filter((row) => row !== undefined);
+  const outer = fit.freedom > 0 ? normalCdf(-studentTQuantile(0.975, fit.freedom)) : 0.025;
   const parameters = fit.parameters.map(({ name, unit }, j): BootstrapParameter => {
     const values = Float64Array.from(good, (row) => row[j]).sort();
     const mean = values.reduce((sum, v) => sum + v, 0) / values.length;
@@ -47,7 +50,7 @@ export function bootstrapOf(
       name,
       unit,
       standardError: good.length > 1 ? Math.sqrt(square / (good.length - 1)) : Number.NaN,
-      interval95: told ? [quantile(values, 0.025), quantile(values, 0.975)] : [Number.NaN, Number.NaN],
+      interval95: told ? [quantile(values, outer), quantile(values, 1 - outer)] : [Number.NaN, Number.NaN],
       median: quantile(values, 0.5),
     };
   });
@@ -61,10 +64,10 @@ export function bootstrapOf(
   };
 }
 
-/** Straight between order statistics (definition 7 of Hyndman & Fan, Am. Stat. 50 (1996) 361-365). */
+/** Straight between order statistics, of which the k-th of n is taken for k / (n + 1) (definition 6 of Hyndman & Fan, Am. Stat. 50 (1996) 361-365). */
 function quantile(sorted: Float64Array, p: number): number {
   if (sorted.length === 0) return Number.NaN;
-  const at = p * (sorted.length - 1);
+  const at = Math.min(sorted.length - 1, Math.max(0, p * (sorted.length + 1) - 1));
   const low = Math.floor(at);
   const high = Math.min(low + 1, sorted.length - 1);
   return sorted[low] + (at - low) * (sorted[high] - sorted[low]);

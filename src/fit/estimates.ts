@@ -1,6 +1,8 @@
 import { studentTQuantile } from "../numerics/distributions.js";
 import { type Autocorrelation, autocorrelationOf } from "./autocorrelation.js";
+import { orthonormalBasis } from "./basis.js";
 import { type LinearTheory, linearTheory } from "./covariance.js";
+import { hangingTogether } from "./hanging-together.js";
 import { constantSlope, fullJacobian } from "./jacobian.js";
 import type { Estimate, FittedParameter, Matrix, Nuisance } from "./result.js";
 import { freedomOf, type Settled } from "./settle.js";
@@ -12,6 +14,8 @@ export interface Estimates {
   readonly correlation: Matrix;
   readonly covariance: Matrix;
   readonly freedom: number;
+  /** Those of the intervals: fewer where residuals hang together. */
+  readonly told: number;
   readonly autocorrelation: Autocorrelation;
   /** Linear theory of parameters and linear terms as declared facts stand, and the names of these unknowns. */
   readonly plain: LinearTheory;
@@ -22,6 +26,8 @@ export interface Estimates {
   readonly t: number;
   /** Variance of one weighted residual. */
   readonly variance: number;
+  /** By parameter: what autocorrelation stretches its interval by, 1 where there is none. */
+  readonly stretch: readonly number[];
   /** By coordinate: how all unknowns of the search move with it, the others at their best, and its standard error; u. */
   readonly ways: readonly { readonly along: Float64Array; readonly error: number }[];
   /** Standard deviation that uncertain constants bring to each parameter, SI. */
@@ -44,7 +50,9 @@ export function estimatesOf({ problem, x, at }: Settled): Estimates {
   const whole = setup.held.length > 0 && x.length > n ? linearTheory(columns, nothing) : plain;
   const freedom = freedomOf(problem);
   const variance = freedom > 0 ? at.ofAll / freedom : Number.NaN;
-  const autocorrelation = autocorrelationOf(setup.blocks, at.residuals);
+  const basis = orthonormalBasis(kept.map((j) => columns[j]));
+  const autocorrelation = autocorrelationOf(setup.blocks, at.residuals, basis);
+  const hanging = hangingTogether(autocorrelation, plain, basis, at.ofAll, freedom);
   const slopes = setup.coordinates.map((c, j) => c.slope(x[j]));
   const constants = setup.constants.flatMap((c) => {
     const shift = constantSlope(problem, x, at, c);
@@ -56,16 +64,21 @@ export function estimatesOf({ problem, x, at }: Settled): Estimates {
   const plainAt = (i: number, j: number): number => variance * plain.inverse[i * plain.n + j];
   // In coordinates: the data's part grows with autocorrelation, then come held facts, then constants.
   const wideAt = (i: number, j: number): number => {
-    const known = plainAt(i, j);
-    const withFacts = variance * whole.inverse[i * whole.n + j];
+    const withFacts = variance * whole.inverse[i * whole.n + j] - plainAt(i, j);
     const carried = constants.reduce((sum, d) => sum + d[i] * d[j], 0);
-    return known * autocorrelation.widening ** 2 + (withFacts - known) + carried;
+    return (hanging ? hanging.covariance[i * plain.n + j] : plainAt(i, j)) + withFacts + carried;
   };
   const matrix = (entry: (i: number, j: number) => number): Matrix => ({
     names: setup.coordinates.map((c) => c.name),
     rows: setup.coordinates.map((_, i) => setup.coordinates.map((_, j) => entry(i, j))),
   });
-  const t = freedom > 0 ? studentTQuantile(0.975, freedom) : Number.NaN;
+  const told = hanging ? hanging.freedom : freedom;
+  const t = told > 0 ? studentTQuantile(0.975, told) : Number.NaN;
+  const stretch = setup.coordinates.map((_, j) => {
+    const ratio = hanging ? Math.sqrt(hanging.covariance[j * plain.n + j] / plainAt(j, j)) : 1;
+    const all = Math.sqrt(setup.observations / autocorrelation.effective);
+    return !hanging || hanging.restsOn[j] >= 4 ? ratio : Math.max(all, ratio || 0);
+  });
   const uncut = setup.coordinates.map((c, j): readonly [number, number] | undefined => {
     const half = t * Math.sqrt(wideAt(j, j)) * slopes[j];
     const value = c.toSi(x[j]);
@@ -80,8 +93,8 @@ export function estimatesOf({ problem, x, at }: Settled): Estimates {
       value: c.toSi(x[j]),
       unit: c.unit,
       standardError: se,
-      ...(se !== undefined && autocorrelation.significant
-        ? { standardErrorCorrelated: se * autocorrelation.widening }
+      ...(se !== undefined && hanging
+        ? { standardErrorCorrelated: Math.sqrt(hanging.covariance[j * plain.n + j]) * slopes[j] }
         : {}),
       interval95: cut.every(Number.isFinite) ? cut : undefined,
       atBound: x[j] <= c.from ? "lower" : x[j] >= c.to ? "upper" : undefined,
@@ -94,12 +107,14 @@ export function estimatesOf({ problem, x, at }: Settled): Estimates {
     correlation: matrix((i, j) => plainAt(i, j) / Math.sqrt(plainAt(i, i) * plainAt(j, j))),
     covariance: matrix((i, j) => wideAt(i, j) * slopes[i] * slopes[j]),
     freedom,
+    told,
     autocorrelation,
     plain,
     unknowns: [...setup.coordinates.map((c) => c.name), ...names],
     uncut,
     t,
     variance,
+    stretch,
     ways: setup.coordinates.map((_, j) => ({
       along: Float64Array.from(x, (_, i) => whole.inverse[i * whole.n + j] / whole.inverse[j * whole.n + j]),
       error: Math.sqrt(variance * whole.inverse[j * whole.n + j]),

@@ -122,9 +122,10 @@ function correlated(e: Ended): FitFinding[] {
 }
 
 function residuals(e: Ended): FitFinding[] {
-  const { lag1, deviations, significant, effective } = e.estimates.autocorrelation;
+  const { lag1, deviations, significant, effective, strands } = e.estimates.autocorrelation;
   const points = e.setup.observations;
-  const evidence = { lag1, deviations, points, effective };
+  const time = strands.reduce((most, s) => Math.max(most, s.time), 0);
+  const evidence = { lag1, deviations, points, effective, time };
   const negative = Object.entries(e.estimates.nuisance).filter(([, n]) => n.scale && !(n.scale.value > 0));
   return [
     ...negative.map(([key, n]) => say(e, "scale-not-positive", { key }, [key], { scale: n.scale?.value ?? 0 })),

@@ -150,7 +150,7 @@ function resultOf(setup: Setup, settled: Settled, found: SearchResult, profile: 
     ...criteriaOf(at.ofData, observations, freeParameters, weights.variances, weights.logVariances),
     correlation: estimates.correlation,
     covariance: estimates.covariance,
-    freedom: estimates.freedom,
+    freedom: estimates.told,
     converged,
     stopped: found.cancelled ? "cancelled" : undefined,
     evaluations: setup.cost.evaluations,

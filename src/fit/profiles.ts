@@ -10,13 +10,13 @@ import type { Settled } from "./settle.js";
  */
 export function profilesOf(settled: Settled, estimates: Estimates, watch: Watch): FittedProfile[] {
   const { x, problem } = settled;
-  const { t, variance, ways, carried, autocorrelation } = estimates;
-  const limit = (t * autocorrelation.widening) ** 2;
+  const { t, variance, ways, carried, stretch } = estimates;
   return problem.setup.coordinates.flatMap((c, j): FittedProfile[] => {
+    const limit = (t * stretch[j]) ** 2;
     if (!(variance > 0) || !Number.isFinite(limit)) return [];
     const range = Number.isFinite(c.to - c.from) ? (c.to - c.from) / 20 : Math.abs(x[j]) / 10 || 0.1;
     const { error } = ways[j];
-    const step = Number.isFinite(error) && error > 0 ? Math.min(error * autocorrelation.widening, 4 * range) : range;
+    const step = Number.isFinite(error) && error > 0 ? Math.min(error * stretch[j], 4 * range) : range;
     const profile = profileOf(settled, j, { variance, limit, step }, watch);
     const value = c.toSi(x[j]);
     const end = (k: 0 | 1): number | undefined => {

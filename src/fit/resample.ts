@@ -1,9 +1,14 @@
 import type { Network } from "../model/network.js";
 import type { Trial } from "../model/trial.js";
+import { colour, whiten } from "../numerics/autoregression.js";
 import { type Random, random } from "../numerics/random.js";
 import { collector } from "../problems/report.js";
 import { autocorrelationOf } from "./autocorrelation.js";
+import { orthonormalBasis } from "./basis.js";
+import { linearTheory } from "./covariance.js";
+import { hangingTogether } from "./hanging-together.js";
 import type { Facts } from "./held.js";
+import { fullJacobian } from "./jacobian.js";
 import { networkModel } from "./network-model.js";
 import { prepare } from "./prepare.js";
 import { type Prior, problemWith } from "./problem.js";
@@ -15,7 +20,7 @@ import { fittedCurve, weightsFor } from "./weights.js";
 
 /** How new data are made from a fit. */
 export type Resampling =
-  /** Residuals drawn with replacement. */
+  /** Residuals drawn with replacement; where they hang together, what makes each differ from the one before (P. Bühlmann, Bernoulli 3 (1997) 123-148, of first order). */
   | "residual"
   /** The same in blocks of neighbours, so that they hang together as they did. */
   | "block"
@@ -38,7 +43,7 @@ export interface RefitOptions {
   readonly free?: readonly string[];
   /** Fitted values, SI by name. */
   readonly values: Readonly<Record<string, number>>;
-  /** Default: residuals, in blocks where they hang together. */
+  /** Default: residuals. */
   readonly resampling?: Resampling;
   readonly seed: number;
 }
@@ -69,7 +74,7 @@ class Resampler implements Refits {
   readonly names: readonly string[];
   readonly resampling: Resampling;
   readonly block: number;
-  private readonly lag1: number;
+  private readonly phi: ReadonlyMap<number, Float64Array>;
   private readonly spread: number;
   private readonly inflate: number;
   private readonly fitted: readonly Float64Array[];
@@ -82,14 +87,21 @@ class Resampler implements Refits {
   ) {
     const { problem, x, at } = settled;
     const { setup } = problem;
-    const { lag1, significant } = autocorrelationOf(setup.blocks, at.residuals);
     const freedom = Math.max(1, freedomOf(problem));
+    const columns = fullJacobian(problem, x, at).filter((_, j) => j < setup.coordinates.length || j >= x.length);
+    const basis = orthonormalBasis(columns);
+    const autocorrelation = autocorrelationOf(setup.blocks, at.residuals, basis);
+    const hanging = hangingTogether(autocorrelation, linearTheory(columns), basis, at.ofData, freedom);
+    const { significant, lag1 } = autocorrelation;
+    this.phi = new Map(autocorrelation.strands.map((s) => [s.block, s.phi]));
     this.names = setup.coordinates.map((c) => c.name);
-    this.resampling = resampling ?? (significant ? "block" : "residual");
-    this.lag1 = significant ? lag1 : 0;
-    this.block = this.resampling === "block" ? blockLength(significant ? lag1 : 0.1, setup.observations) : 1;
-    this.spread = Math.sqrt(at.ofData / freedom);
-    this.inflate = Math.sqrt(setup.observations / freedom);
+    this.resampling = resampling ?? "residual";
+    this.block =
+      this.resampling === "block"
+        ? blockLength(significant ? Math.max(0.1, Math.min(lag1, 0.999)) : 0.1, setup.observations)
+        : 1;
+    this.spread = Math.sqrt(hanging?.variance ?? at.ofData / freedom);
+    this.inflate = this.spread / Math.sqrt(at.ofData / setup.observations);
     this.fitted = setup.blocks.map((b, k) => fittedCurve(b.time, b.origin, at, k));
     this.gaps = delayWalks(setup, x).filter(({ gap }) => gap > 0);
   }
@@ -128,7 +140,7 @@ class Resampler implements Refits {
     return problem.setup.blocks.map((b, k) => {
       const n = b.time.length;
       const residuals = at.residuals.subarray(b.from, b.from + n);
-      const errors = this.resampling === "parametric" ? this.normal(n, draw) : this.drawn(residuals, draw);
+      const errors = this.errors(k, residuals, draw);
       const doubts = b.doubts.map(() => draw.normal());
       return this.fitted[k].map((y, i) => {
         const doubt = b.doubts.reduce((sum, d, j) => sum + doubts[j] * d[i], 0);
@@ -137,24 +149,37 @@ class Resampler implements Refits {
     });
   }
 
-  private drawn(residuals: Float64Array, draw: Random): Float64Array {
+  /** Errors of one reading. Where its residuals hang together, what is drawn is what makes each differ from the one before. */
+  private errors(k: number, residuals: Float64Array, draw: Random): Float64Array {
+    const b = this.settled.problem.setup.blocks[k];
+    const phi = this.phi.get(k);
+    const places = phi && Array.from(b.time.keys()).filter((i) => !b.censored?.[i]);
+    if (this.resampling === "block") return this.drawn(residuals, this.inflate, draw);
+    let errors: Float64Array;
+    if (this.resampling === "parametric") errors = residuals.map(() => this.spread * draw.normal());
+    else if (phi && places) {
+      const fresh = Float64Array.from(residuals);
+      whiten(places, phi, fresh);
+      const mean = fresh.reduce((sum, e) => sum + e, 0) / fresh.length;
+      const own = Math.sqrt(fresh.reduce((sum, e) => sum + (e - mean) ** 2, 0) / fresh.length);
+      errors = this.drawn(fresh, own > 0 ? this.spreadOf(residuals) / own : 1, draw);
+    } else errors = this.drawn(residuals, this.inflate, draw);
+    if (phi && places) colour(places, phi, errors);
+    return errors;
+  }
+
+  private spreadOf(residuals: Float64Array): number {
+    return this.inflate * Math.sqrt(residuals.reduce((sum, e) => sum + e * e, 0) / residuals.length);
+  }
+
+  private drawn(residuals: Float64Array, times: number, draw: Random): Float64Array {
     const n = residuals.length;
     const mean = residuals.reduce((sum, e) => sum + e, 0) / n;
     const length = Math.min(this.block, n);
     const errors = new Float64Array(n);
     for (let i = 0; i < n; i += length) {
       const from = draw.below(n - length + 1);
-      for (let k = 0; k < length && i + k < n; k++) errors[i + k] = this.inflate * (residuals[from + k] - mean);
-    }
-    return errors;
-  }
-
-  private normal(n: number, draw: Random): Float64Array {
-    const { lag1, spread } = this;
-    const fresh = Math.sqrt(1 - lag1 * lag1);
-    const errors = new Float64Array(n);
-    for (let i = 0; i < n; i++) {
-      errors[i] = i === 0 ? spread * draw.normal() : lag1 * errors[i - 1] + fresh * spread * draw.normal();
+      for (let k = 0; k < length && i + k < n; k++) errors[i + k] = times * (residuals[from + k] - mean);
     }
     return errors;
   }

@@ -105,6 +105,8 @@ export interface Reading {
         readonly counting?: Counting | undefined;
       }
     | undefined;
+  /** Whether neighbouring errors hang together: as exp(-gap / time), s; `fitted`: so, with a time from the data; undefined: not said. */
+  readonly correlated?: Correlated | undefined;
   readonly leaveOut: readonly {
     readonly from: number;
     readonly to: number;
@@ -114,6 +116,8 @@ export interface Reading {
   /** The unit of value for people, after calibration. */
   readonly unit: Unit;
 }
+
+export type Correlated = "no" | "fitted" | { readonly time: number };
 
 /** A place that a reading draws from. */
 export interface Place {

@@ -162,7 +162,8 @@ outlets: [out]
     expect(found.residualSumOfSquares / 79).toBeLessThan(1.4);
   });
 
-  test("residuals that hang together widen the interval by their effective number", () => {
+  // Errors of one tank's volume by J+ V J+', worked with whole matrices: V from the correlation time that the fit found.
+  test("residuals that hang together widen the interval as an autoregression makes them", () => {
     const next = noisy(5, 1);
     let last = 0;
     const trial = synthetic(
@@ -180,12 +181,26 @@ outlets: [out]
     );
     const found = fitted(plain, [trial]);
     const finding = found.findings.find((f) => f.code === "residuals-correlated");
-    const r = Number(finding?.evidence.lag1);
-    expect(r).toBeGreaterThan(0.6);
-    expect(r).toBeLessThan(0.95);
+    const time = Number(finding?.evidence.time) / 60;
+    expect(Math.exp(-0.25 / time)).toBeGreaterThan(0.65);
+    expect(Math.exp(-0.25 / time)).toBeLessThan(0.95);
     const p = found.parameters[0];
-    const wide = (p.standardError ?? NaN) * Math.sqrt((1 + r) / (1 - r));
-    expect(p.standardErrorCorrelated).toBeCloseTo(wide, 12);
-    expect(halfWidth(found)).toBeCloseTo(studentTQuantile(0.975, 159) * wide, 10);
+    const v = p.value * 1e3;
+    const at = every(0.25, 160);
+    const slope = at.map((m) => ((50 / v) * Math.exp((-10 * m) / v) * ((10 * m) / v - 1)) / v);
+    const square = slope.reduce((sum, d) => sum + d * d, 0);
+    let [between, squares] = [0, 0];
+    for (let i = 0; i < 160; i++) {
+      for (let j = 0; j < 160; j++) {
+        const r = Math.exp(-Math.abs(at[i] - at[j]) / time);
+        between += slope[i] * r * slope[j];
+        squares += r * r;
+      }
+    }
+    const variance = found.residualSumOfSquares / (160 - between / square);
+    const wide = Math.sqrt(variance * between) / square / 1e3;
+    expect((p.standardErrorCorrelated ?? NaN) / wide).toBeCloseTo(1, 6);
+    expect(halfWidth(found) / (studentTQuantile(0.975, 160 ** 2 / squares - 1) * wide)).toBeCloseTo(1, 6);
+    expect(wide).toBeGreaterThan(1.5 * (p.standardError ?? NaN));
   });
 });

@@ -1,0 +1,75 @@
+import { correlate } from "../numerics/autoregression.js";
+import type { Autocorrelation } from "./autocorrelation.js";
+import { dot } from "./basis.js";
+import type { LinearTheory } from "./covariance.js";
+
+/** Linear theory of a least-squares optimum whose residuals hang together. */
+export interface HangingTogether {
+  /** Of the unknowns of the linear theory, n x n row-major; NaN where not estimable. */
+  readonly covariance: Float64Array;
+  /** Variance of one weighted residual. */
+  readonly variance: number;
+  /** Degrees of freedom of that variance. */
+  readonly freedom: number;
+  /**
+   * By unknown: readings that its value rests on. Where a front stands at a sample that is one or two, and what linear theory says
+   * of how their errors hang together holds for no further than that sample.
+   */
+  readonly restsOn: Float64Array;
+}
+
+/**
+ * Covariance J+ V J+' of plain least squares where the residuals have the covariance V of first-order autoregressions: the
+ * values stay those of least squares, which hold whatever the residuals do, and their errors are those that such residuals
+ * give. The variance counts what the fit took out of residuals that hang together; its degrees of freedom are F. E.
+ * Satterthwaite's (Biometrics Bull. 2 (1946) 110-114).
+ * @param basis     orthonormal columns that span those of the theory
+ * @param sum       of squared residuals
+ * @param freedom   of that sum, were the residuals independent
+ * @returns undefined where they are
+ * @see G. A. F. Seber, C. J. Wild, Nonlinear Regression, Wiley 1989, section 6.2
+ */
+export function hangingTogether(
+  { strands, effectiveForVariance }: Autocorrelation,
+  theory: LinearTheory,
+  basis: readonly Float64Array[],
+  sum: number,
+  freedom: number,
+): HangingTogether | undefined {
+  if (strands.length === 0) return undefined;
+  const p = basis.length;
+  const { n } = theory;
+  const correlated = basis.map((q) => {
+    const v = Float64Array.from(q);
+    for (const { rows, phi } of strands) correlate(rows, phi, q, v);
+    return v;
+  });
+  const taken = basis.reduce((trace, q, k) => trace + dot(q, correlated[k]), 0);
+  const variance = sum / Math.max(1, freedom + p - taken);
+  // J+ = B Q', column by column of Q.
+  const ways = basis.map((q) => theory.respond(q));
+  const covariance = new Float64Array(n * n).fill(Number.NaN);
+  const between = basis.map((q) => correlated.map((v) => dot(q, v)));
+  for (let i = 0; i < n; i++) {
+    for (let j = 0; j < n; j++) {
+      if (!theory.estimable[i] || !theory.estimable[j]) continue;
+      let entry = 0;
+      for (let k = 0; k < p; k++) for (let l = 0; l < p; l++) entry += ways[k][i] * between[k][l] * ways[l][j];
+      covariance[i * n + j] = variance * entry;
+    }
+  }
+  const restsOn = Float64Array.from({ length: n }, (_, j) => participation(basis, ways, j));
+  return { covariance, variance, freedom: Math.max(2, effectiveForVariance - p), restsOn };
+}
+
+/** (sum w^2)^2 / sum w^4 of the weights with which readings make an unknown. */
+function participation(basis: readonly Float64Array[], ways: readonly Float64Array[], j: number): number {
+  let [square, fourth] = [0, 0];
+  for (let i = 0; i < basis[0].length; i++) {
+    let w = 0;
+    for (let k = 0; k < basis.length; k++) w += ways[k][j] * basis[k][i];
+    square += w * w;
+    fourth += w ** 4;
+  }
+  return square ** 2 / fourth;
+}
