@@ -40,6 +40,12 @@ export {
   type UnitInjection,
 } from "./simulate/tracer.js";
 export { transferFunction } from "./transfer/transfer-function.js";
+export {
+  type Transient,
+  type TransientBalance,
+  type TransientOptions,
+  transient,
+} from "./transient/transient.js";
 
 /**
  * Fits the free parameters of the network that a plant was compiled from to tracer trials.

@@ -20,6 +20,7 @@ export const layers = [
   "simulate",
   "equations",
   "reaction",
+  "transient",
   "data",
   "fit",
   "plan",

@@ -4,7 +4,7 @@ import { problem } from "../problems/report.js";
 import { Part, type Plant } from "./plant.js";
 
 /** What is to be done with a plant: followed by integrating, by inverting transfer functions, or its steady state with reaction. */
-export type Work = "tracer" | "ode" | "laplace" | "reaction";
+export type Work = "tracer" | "ode" | "laplace" | "reaction" | "transient";
 
 /** What this version does in about half a minute: nodes in all, and nodes that feed one another. */
 const limits: Readonly<Record<Work, { says: string; nodes: number; circle: number }>> = {
@@ -12,6 +12,7 @@ const limits: Readonly<Record<Work, { says: string; nodes: number; circle: numbe
   ode: { says: "integrate tracer curves of", nodes: 20_000, circle: 20_000 },
   laplace: { says: "compute tracer curves by transfer functions of", nodes: 5_000, circle: 1_000 },
   reaction: { says: "solve reaction in", nodes: 2_000_000, circle: 2_000_000 },
+  transient: { says: "follow reaction in time in", nodes: 20_000, circle: 20_000 },
 };
 
 /** Why this version cannot do a work: bodies that are no cells, tubes and junctions (exact), or have no equations in time (ode), too many nodes. */

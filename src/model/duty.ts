@@ -19,6 +19,8 @@ export interface Duty {
   readonly feeds: ReadonlyMap<string, DutyFeed>;
   /** What holds in some bodies only, by the name of a compartment, a member of one or a part. */
   readonly local?: ReadonlyMap<string, LocalDuty>;
+  /** Where a transient starts; undefined where the duty does not say. */
+  readonly contents?: DutyContents | undefined;
   /** K, everywhere (isothermal). */
   readonly temperature: Value | undefined;
   /** Dimension of the concentration of each species of the chemistry. */
@@ -34,7 +36,28 @@ export interface Placed {
 
 export interface DutyFeed {
   readonly at: Span;
+  /** Of one that changes in time, what it is before. */
   readonly species: ReadonlyMap<string, Placed>;
+  /** Those that change in time. */
+  readonly courses?: ReadonlyMap<string, FeedCourse>;
+}
+
+/** How a feed value goes on in time: an upset, or a log. */
+export type FeedCourse =
+  | {
+      readonly is: "upset";
+      readonly to: Value;
+      /** s; `lasting` undefined: for good. */
+      readonly start: number;
+      readonly lasting: number | undefined;
+    }
+  /** Straight between rows: s from 0 on, ascending, and SI. */
+  | { readonly is: "logged"; readonly times: Float64Array; readonly values: Float64Array };
+
+/** What places hold at the start: by compartment, part, member or cell, or `all`, the concentrations of species. */
+export interface DutyContents {
+  readonly at: Span;
+  readonly levels: ReadonlyMap<string, DutyFeed>;
 }
 
 /** What a duty sets otherwise in one place. */
@@ -48,12 +71,21 @@ export interface LocalDuty {
 export interface Reported {
   readonly text: string;
   readonly place: Span;
-  readonly what: "conversion" | "yield" | "selectivity" | "log-removal" | "concentration" | "tracer-time";
+  readonly what:
+    | "conversion"
+    | "yield"
+    | "selectivity"
+    | "log-removal"
+    | "concentration"
+    | "tracer-time"
+    | "time-beyond";
   /** The species; empty for tracer-time. */
   readonly of: string;
   /** `yield of P from A`, `selectivity of P over S`: the second species. */
   readonly versus: string | undefined;
   /** tracer-time: 10 for t10. */
   readonly percent: number | undefined;
+  /** time-beyond: the limit, and on which side of it time counts. */
+  readonly limit?: { readonly side: "above" | "below"; readonly value: Value };
   readonly at: string | undefined;
 }

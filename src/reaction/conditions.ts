@@ -50,7 +50,7 @@ export function conditionsOf(
       (s) => settings[`${name}.${s}`] ?? duty.feeds.get(name)?.species.get(s)?.value.of([]) ?? 0,
     ),
   );
-  const scale = scales(feeds, species.length, duty.concentrations);
+  const scale = scales([...feeds, ...otherLevels(duty, species)], species.length, duty.concentrations);
   const reacting = chemistry ?? { species, reactions: [] };
   const reactionsWith = (places: readonly string[]): Reactions => {
     const constants = chemistry ? constantsOf(chemistry, duty, settings, places) : [];
@@ -132,6 +132,20 @@ export function dutyInputs(chemistry: Chemistry | undefined, duty: Duty): DutyIn
 const fedSpecies = (duty: Duty): string[] => [
   ...new Set([...duty.feeds.values()].flatMap((feed) => [...feed.species.keys()])),
 ];
+
+/** What is there besides what is fed before a change: at the start, and after it. */
+function otherLevels(duty: Duty, species: readonly string[]): Float64Array[] {
+  const held = [...(duty.contents?.levels.values() ?? [])].map((level) =>
+    Float64Array.from(species, (s) => level.species.get(s)?.value.of([]) ?? 0),
+  );
+  const courses = [...duty.feeds.values()].map(({ courses }) =>
+    Float64Array.from(species, (s) => {
+      const course = courses?.get(s);
+      return course?.is === "upset" ? course.to.of([]) : Math.max(0, ...(course?.values ?? []));
+    }),
+  );
+  return [...held, ...courses];
+}
 
 /** Each species by its own largest feed; one that is not fed by the largest of those that are counted as it is. */
 function scales(feeds: readonly Float64Array[], n: number, kinds: readonly Dimension[]): Float64Array {

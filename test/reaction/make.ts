@@ -35,7 +35,8 @@ export interface Sketch {
 
 /** A plant from a sketch. Flows must balance: it is not checked. */
 export function plantOf({ cells = {}, tubes = {}, links }: Sketch): Plant {
-  const names = [...new Set(links.flatMap((link) => link.slice(0, 2) as string[]))];
+  const linked = links.flatMap((link) => link.slice(0, 2) as string[]);
+  const names = [...new Set([...linked, ...Object.keys(cells), ...Object.keys(tubes)])];
   const index = new Map(names.map((name, i) => [name, i]));
   const node = (name: string): number => index.get(name) as number;
   const from = Int32Array.from(links, ([a]) => node(a));

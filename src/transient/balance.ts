@@ -1,0 +1,112 @@
+import type { Plant } from "../compile/plant.js";
+import { type Conserved, imbalance } from "../reaction/conserved.js";
+import { passTube } from "../reaction/tube.js";
+import type { Run } from "./run.js";
+import { Sampled } from "./sampled.js";
+
+/** What became of everything between 0 and the end, by component; scaled concentration times m3. */
+export interface Amounts {
+  readonly fed: Float64Array;
+  readonly left: Float64Array;
+  readonly made: Float64Array;
+  /** Held at 0 and at the end. */
+  readonly before: Float64Array;
+  readonly held: Float64Array;
+}
+
+/** Counts what was fed, what left, what is held and what reaction made. */
+export function amountsOf(run: Run, plant: Plant): Amounts {
+  const { scene, horizon, feeds } = run.ask;
+  const { width, follow, sort } = scene;
+  const sums = (): Float64Array => new Float64Array(width);
+  const [fed, left, made, before, held, one] = [sums(), sums(), sums(), sums(), sums(), sums()];
+  const add = (to: Float64Array, factor: number): void => {
+    for (let i = 0; i < width; i++) to[i] += factor * one[i];
+  };
+  plant.feeds.forEach(({ flow }, k) => {
+    feeds[k].integral(horizon, one);
+    add(fed, flow);
+  });
+  for (const { node, flow } of plant.outlets) {
+    if (!(flow > 0)) continue;
+    run.signal(node).integral(horizon, one);
+    add(left, flow);
+  }
+  for (const { stage, run: of, first } of run.stages) {
+    for (let i = 0; i < width; i++) made[i] += of.made[i];
+    stage.held.forEach((_, body) => {
+      stage.addHeld(body, first, before);
+      stage.addHeld(body, of.state, held);
+    });
+  }
+  for (let node = 0; node < sort.length; node++) {
+    const body = follow[node];
+    if (body?.is !== "parcels" || sort[node] === "joint" || sort[node] === "none") continue;
+    const flow = plant.columns.inflow[node];
+    const inside = parcelsIn(run, node);
+    for (let i = 0; i < width; i++) {
+      before[i] += flow * inside.before[i];
+      held[i] += flow * inside.now[i];
+      made[i] += flow * (inside.now[i] - inside.before[i]);
+    }
+    // What reaction made on the way is what left and is held, less what entered and was held.
+    run.signal(node).integral(horizon, one);
+    add(made, flow);
+    run.entering(node).integral(horizon, one);
+    add(made, -flow);
+  }
+  return { fed, left, made, before, held };
+}
+
+/** What a tube holds at 0 and at the end, over its flow: every parcel by when it entered. */
+function parcelsIn(run: Run, node: number): { before: Float64Array; now: Float64Array } {
+  const { scene, horizon, start } = run.ask;
+  const body = scene.follow[node];
+  const delay = body?.is === "parcels" ? body.delay : 0;
+  const kinetics = scene.tube(node);
+  const inlet = run.entering(node);
+  const inside = (at: number): Float64Array => {
+    const sum = new Float64Array(scene.width);
+    // Age u from 0 to the delay; what was there at the start has reacted since then only.
+    const profile = new Sampled(
+      run.basis,
+      scene.width,
+      {
+        unit: delay,
+        breaks: run.breaksWithin(node, at).map((t) => at - t),
+        longest: (u) => delay - u || delay,
+        evaluate(u, side, out) {
+          const age = Math.min(u, delay);
+          const entered = at - age;
+          const old = entered < 0 || (side > 0 && entered <= 2e-12 * at);
+          if (old && start.is === "contents") {
+            out.set(start.holding(node));
+            return !(at > 0) || passTube(kinetics, at, out);
+          }
+          inlet.read(entered, -side, out, 0);
+          return !(age > 0) || passTube(kinetics, age, out);
+        },
+      },
+      undefined,
+    );
+    profile.integral(delay, sum);
+    return sum;
+  };
+  return { before: inside(0), now: inside(horizon) };
+}
+
+/** How well amounts close, by component: as a share of the largest of them. */
+export function closureOf({ fed, left, made, before, held }: Amounts): Float64Array {
+  return fed.map((f, i) => {
+    const size = Math.max(f + before[i], left[i] + held[i], Math.abs(made[i]));
+    return size > 0 ? (f + before[i] + made[i] - left[i] - held[i]) / size : 0;
+  });
+}
+
+/** The same of sums that no reaction changes. */
+export const conservedClosure = (of: Conserved, { fed, left, before, held }: Amounts): number =>
+  imbalance(
+    of,
+    fed.map((x, i) => x + before[i]),
+    left.map((x, i) => x + held[i]),
+  );

@@ -1,0 +1,56 @@
+import { axialElements } from "../compartments/axial-elements.js";
+import { type Realization, realizationAt } from "../compartments/realization.js";
+import type { Stays } from "../compartments/stays.js";
+import { Part, type Plant } from "../compile/plant.js";
+import { RefusedError } from "../problems/refused.js";
+import { problem } from "../problems/report.js";
+
+/** How a body that is no cell is followed in time. */
+export type Follow =
+  /** Parcels that stay by themselves: all equally long, or as the body's kind shares their stays out. */
+  | {
+      readonly is: "parcels";
+      /** s: nothing leaves earlier. */
+      readonly delay: number;
+      /** Undefined: all stay for `delay`. */
+      readonly stays: Stays | undefined;
+      /** s */
+      readonly mean: number;
+      /** How a jump that enters spreads, as far as that is known by equations. */
+      readonly spread: Realization | undefined;
+    }
+  /** Mixed states that exchange. */
+  | { readonly is: "states"; readonly realization: Realization };
+
+/**
+ * Undefined for cells and joints.
+ * @throws RefusedError where there is no way
+ */
+export function followOf(plant: Plant, node: number): Follow | undefined {
+  const { part, volume, inflow } = plant.columns;
+  if (part[node] === Part.Delay) {
+    const mean = volume[node] / inflow[node];
+    return { is: "parcels", delay: mean, stays: undefined, mean, spread: undefined };
+  }
+  const block = plant.columns.blockAt(node);
+  if (!block) return undefined;
+  const refuse = (what: string): never => {
+    const name = plant.columns.nameOf(node);
+    const { at } = plant.network.compartments.find((body) => body.name === name) ?? plant.network;
+    throw new RefusedError([problem("not-yet", at, { what: `a transient of '${name}', ${what},` })]);
+  };
+  const { mixing, pockets } = block;
+  if (mixing.is === "dispersed") {
+    // Reaction is between the two ends only: closed ends, whatever they are for tracer.
+    const unit = axialElements(mixing.peclet, false);
+    if (!unit || !(block.volume > 0)) return refuse("whose Péclet number is too high for its equations in time");
+    return { is: "states", realization: realizationAt(unit, block.volume, pockets) };
+  }
+  if (pockets) return refuse("a body without back-mixing beside stagnant pockets");
+  const mean = block.volume / inflow[node];
+  if (mixing.is === "plug") return { is: "parcels", delay: mean, stays: undefined, mean, spread: undefined };
+  const looped = plant.groups.some((group) => group.length > 1 && group.includes(node));
+  if (looped) return refuse("a body of parcels that stay apart, within a recycle");
+  const { stays } = mixing;
+  return { is: "parcels", delay: stays.from * mean, stays, mean, spread: block.realize(inflow[node]) };
+}

@@ -1,0 +1,74 @@
+import type { Realization } from "../compartments/realization.js";
+import type { Plant } from "../compile/plant.js";
+import { bodyAt } from "../reaction/bodies.js";
+import type { Conditions } from "../reaction/conditions.js";
+import type { Pass } from "../reaction/dispersion.js";
+import type { Kinetics } from "../reaction/kinetics.js";
+import { integrable, type Sort } from "../simulate/integrable.js";
+import { type Blend, blends } from "./blends.js";
+import { type Follow, followOf } from "./follow.js";
+
+/** A plant with what happens in it, cut into stages: cells and dispersed bodies between tubes are integrated together. */
+export interface Scene {
+  readonly plant: Plant;
+  /** Components of a mixture. */
+  readonly width: number;
+  readonly sort: readonly Sort[];
+  /** How each body that is neither cell nor joint is followed; undefined for those. */
+  readonly follow: readonly (Follow | undefined)[];
+  /** Stage in which what leaves a node is known. */
+  readonly stage: Int32Array;
+  readonly stages: number;
+  /** Is the node in a circle of nodes? */
+  readonly looped: Uint8Array;
+  readonly net: ReturnType<typeof integrable>;
+  blend(node: number): Blend;
+  /** What happens in mixed liquid at a node, and along one. */
+  cell(node: number): Kinetics;
+  tube(node: number): Kinetics;
+  /** What a node makes of a mixture that goes through it. */
+  pass(node: number): Pass | undefined;
+}
+
+/** @throws RefusedError where a body cannot be followed in time */
+export function sceneOf(plant: Plant, { reactions }: Conditions): Scene {
+  const { size, inflow, part } = plant.columns;
+  const follow = Array.from({ length: size }, (_, i) =>
+    inflow[i] > 0 || part[i] === 0 ? followOf(plant, i) : undefined,
+  );
+  const realized = follow.map((f): Realization | undefined => (f?.is === "states" ? f.realization : f?.spread));
+  const net = integrable(plant, realized);
+  const { stage, stages } = staged(net, follow);
+  return {
+    plant,
+    width: reactions.cell.size,
+    sort: net.sort,
+    follow,
+    stage,
+    stages,
+    looped: net.looped,
+    net: { ...net, stage, stages },
+    blend: blends(plant, net.sort),
+    cell: () => reactions.cell,
+    tube: () => reactions.tube,
+    pass: (node) => bodyAt(plant, node, reactions),
+  };
+}
+
+/** Bodies that are read off what entered them wait for what comes before, outside circles; what follows them waits for them. */
+function staged({ plant, into, sort, looped }: Scene["net"], follow: Scene["follow"]): Pick<Scene, "stage" | "stages"> {
+  const stage = new Int32Array(sort.length);
+  for (const group of plant.groups) {
+    const inside = new Set(group);
+    let first = 0;
+    for (const i of group) {
+      for (let e = into.start[i]; e < into.start[i + 1]; e++) {
+        const before = plant.from[into.edges[e]];
+        if (!inside.has(before)) first = Math.max(first, stage[before]);
+      }
+    }
+    for (const i of group)
+      stage[i] = first + (!looped[i] && follow[i]?.is === "parcels" && sort[i] !== "joint" ? 1 : 0);
+  }
+  return { stage, stages: stage.reduce((m, s) => Math.max(m, s), 0) + 1 };
+}

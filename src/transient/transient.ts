@@ -1,0 +1,215 @@
+import { requireCarried } from "../compile/carried.js";
+import type { Plant } from "../compile/plant.js";
+import type { Chemistry } from "../model/chemistry.js";
+import type { Duty } from "../model/duty.js";
+import type { Halt } from "../numerics/odex.js";
+import { type Conditions, conditionsOf, type DutySettings } from "../reaction/conditions.js";
+import { conservedBy } from "../reaction/conserved.js";
+import { steadyState } from "../reaction/steady.js";
+import { type Amounts, amountsOf, closureOf, conservedClosure } from "./balance.js";
+import { changes, feedSignals, holdings } from "./inputs.js";
+import { Run } from "./run.js";
+import { sceneOf } from "./scene.js";
+import type { Start } from "./start.js";
+
+export interface TransientOptions {
+  /** Values in place of the duty's (`DutySettings`), SI; `feed.A.to` is what an upset goes to. */
+  readonly settings?: DutySettings;
+  /** Places whose outflow is wanted beside the outlets; default: all compartments. */
+  readonly at?: readonly string[];
+  /** Relative tolerance of a step; default 1e-9. */
+  readonly relative?: number;
+  /** Absolute tolerance, as a share of the concentration scale of each species; default 1e-12. */
+  readonly absolute?: number;
+  /** Steps after which a stage is given up; default 1e6. */
+  readonly maxSteps?: number;
+  /** False leaves the balances out: for many runs in a row. */
+  readonly balance?: boolean;
+}
+
+/** What leaves a place over time, SI. */
+export interface Course {
+  readonly name: string;
+  /** m3/s. */
+  readonly flow: number;
+  /** values[k * species + i] at times[k]. */
+  readonly values: Float64Array;
+}
+
+/** How a vessel goes from one state to another. SI; species by their index in `species`. */
+export interface Transient {
+  readonly species: readonly string[];
+  /** s, ascending. */
+  readonly times: Float64Array;
+  readonly start: Start["is"];
+  readonly outlets: readonly Course[];
+  readonly places: readonly Course[];
+  /** Undefined where it was not asked for, or the run ended too soon. */
+  readonly balance: TransientBalance | undefined;
+  /** Where it ended too soon, s: values from there on are NaN. */
+  readonly stopped: { readonly t: number; readonly why: Halt | "no steady state"; readonly node: string } | undefined;
+  readonly steps: number;
+  /** What leaves an outlet or one of the places asked for, at any time up to the last, SI. */
+  readonly look: (name: string) => Look;
+}
+
+export interface Look {
+  /** Writes the concentrations at t (s); of a jump, those after it. */
+  at(t: number, out: Float64Array, side?: number): void;
+  /** Integral from 0 to t, concentration times s. */
+  integral(t: number, out: Float64Array): void;
+}
+
+/** Amounts over the whole run by species (mol, kg or a number, as the species is counted). */
+export interface TransientBalance extends Amounts {
+  /** (fed + held before + made - left - held) as a share of the largest of them; 0 is a closed balance. */
+  readonly closure: Float64Array;
+  /** How far sums that no reaction changes (elements, say) fail to close, the largest, as a share. */
+  readonly conserved: number;
+}
+
+/**
+ * A duty in time: start-up, shut-down, a change of grade, an upset, a batch. It starts with the duty's `contents`; without
+ * them, where something that is fed changes in time, in the steady state before that, and else with liquid that holds none of the
+ * species. Flows are steady.
+ *
+ * Cells and dispersed bodies are integrated together (Radau IIA, sparse exact Jacobian, stopping wherever something that enters
+ * jumps); tubes are followed as parcels, so that a front stays a front. Relative accuracy is about 1e-8 at the default tolerance.
+ * @param times s, ascending, from 0
+ * @throws RefusedError where the network holds something that cannot be followed in time yet
+ * @see the methods beside their code in `src/transient` and `src/numerics`
+ */
+export function transient(
+  plant: Plant,
+  chemistry: Chemistry | undefined,
+  duty: Duty,
+  times: ArrayLike<number>,
+  options: TransientOptions = {},
+): Transient {
+  requireCarried(plant, "transient");
+  const settings = options.settings ?? {};
+  const conditions = conditionsOf(plant, chemistry, duty, settings);
+  const scene = sceneOf(plant, conditions);
+  const { species } = conditions;
+  const clock = Float64Array.from(times);
+  const start = startOf(plant, chemistry, duty, conditions, settings);
+  const names = (options.at ?? plant.network.compartments.map((c) => c.name)).filter((name) => plant.exit.has(name));
+  const nodeOf = (name: string): number => plant.exit.get(name) as number;
+  const horizon = clock[clock.length - 1] ?? 0;
+  if (typeof start === "string") return nothing(plant, species, clock, names, start);
+  const run = new Run({
+    scene,
+    feeds: feedSignals(plant, conditions, duty, settings),
+    start,
+    horizon,
+    looks: [...plant.outlets.map((o) => o.node), ...names.map(nodeOf)],
+    relative: options.relative ?? 1e-9,
+    absolute: options.absolute ?? 1e-12,
+    maxSteps: options.maxSteps ?? 1e6,
+    counted: options.balance !== false,
+  });
+  const end = run.stopped?.t ?? Number.POSITIVE_INFINITY;
+  const n = species.length;
+  const toSi = (out: Float64Array): void => {
+    for (let i = 0; i < n; i++) out[i] = Math.max(out[i], 0) * conditions.scale[i];
+  };
+  const course = (name: string, node: number): Course => {
+    const values = new Float64Array(clock.length * n);
+    const row = new Float64Array(scene.width);
+    const flows = plant.columns.inflow[node] > 0 || scene.sort[node] === "cell";
+    clock.forEach((t, k) => {
+      if (t > end || !flows) row.fill(Number.NaN);
+      else run.signal(node).read(t, 1, row, 0);
+      toSi(row);
+      values.set(row.subarray(0, n), k * n);
+    });
+    return { name, flow: plant.columns.inflow[node], values };
+  };
+  const outlets = plant.outlets.map((o) => course(o.name, o.node));
+  return {
+    species,
+    times: clock,
+    start: start.is,
+    outlets,
+    places: names.map((name) => course(name, nodeOf(name))),
+    balance: options.balance === false || run.stopped ? undefined : balanceOf(run, plant, conditions),
+    stopped: run.stopped && { t: run.stopped.t, why: run.stopped.why, node: plant.columns.nameOf(run.stopped.node) },
+    steps: run.stages.reduce((sum, s) => sum + s.run.steps, 0),
+    look(name) {
+      const signal = run.signal(plant.outlets.find((o) => o.name === name)?.node ?? nodeOf(name));
+      const row = new Float64Array(scene.width);
+      return {
+        at(t, out, side = 1) {
+          signal.read(t, side, row, 0);
+          toSi(row);
+          out.set(row.subarray(0, n));
+        },
+        integral(t, out) {
+          signal.integral(t, row);
+          for (let i = 0; i < n; i++) out[i] = row[i] * conditions.scale[i];
+        },
+      };
+    },
+  };
+}
+
+function startOf(
+  plant: Plant,
+  chemistry: Chemistry | undefined,
+  duty: Duty,
+  conditions: Conditions,
+  settings: DutySettings,
+): Start | string {
+  if (duty.contents || !changes(duty)) {
+    return { is: "contents", holding: holdings(plant, conditions, duty.contents, settings) };
+  }
+  const { converged, concentrations, worst } = steadyState(plant, chemistry, duty, settings);
+  if (!converged) return worst?.node ?? "";
+  const { scale } = conditions;
+  const n = conditions.species.length;
+  return {
+    is: "steady",
+    leaving: (node) => Float64Array.from(scale, (s, i) => (concentrations[node * n + i] || 0) / s),
+  };
+}
+
+function balanceOf(run: Run, plant: Plant, { species, scale, reactions }: Conditions): TransientBalance {
+  const amounts = amountsOf(run, plant);
+  const n = species.length;
+  const toSi = (x: Float64Array): Float64Array => scale.map((s, i) => s * x[i]);
+  return {
+    fed: toSi(amounts.fed),
+    left: toSi(amounts.left),
+    made: toSi(amounts.made),
+    before: toSi(amounts.before),
+    held: toSi(amounts.held),
+    closure: closureOf(amounts).slice(0, n),
+    conserved: conservedClosure(conservedBy(reactions.cell.numbers, n), amounts),
+  };
+}
+
+/** No start, no run. */
+function nothing(
+  plant: Plant,
+  species: readonly string[],
+  times: Float64Array,
+  names: readonly string[],
+  node: string,
+): Transient {
+  const empty = (name: string): Course => ({
+    name,
+    flow: plant.columns.inflow[plant.exit.get(name) ?? 0],
+    values: new Float64Array(times.length * species.length).fill(Number.NaN),
+  });
+  return {
+    species,
+    times,
+    start: "steady",
+    outlets: plant.outlets.map((o) => empty(o.name)),
+    places: names.map(empty),
+    balance: undefined,
+    stopped: { t: 0, why: "no steady state", node },
+    steps: 0,
+    look: () => ({ at: (_, out) => out.fill(Number.NaN), integral: (_, out) => out.fill(Number.NaN) }),
+  };
+}
