@@ -63,7 +63,7 @@ function parcelsIn(run: Run, node: number): { before: Float64Array; now: Float64
   const { scene, horizon, start } = run.ask;
   const body = scene.follow[node];
   const delay = body?.is === "parcels" ? body.delay : 0;
-  const kinetics = scene.tube(node);
+  const kinetics = scene.at(node).tube;
   const inlet = run.entering(node);
   const inside = (at: number): Float64Array => {
     const sum = new Float64Array(scene.width);

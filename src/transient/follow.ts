@@ -19,8 +19,8 @@ export type Follow =
       /** How a jump that enters spreads, as far as that is known by equations. */
       readonly spread: Realization | undefined;
     }
-  /** Mixed states that exchange. */
-  | { readonly is: "states"; readonly realization: Realization };
+  /** Mixed states that exchange; those after the first `flowing` are pockets. */
+  | { readonly is: "states"; readonly realization: Realization; readonly flowing: number };
 
 /**
  * Undefined for cells and joints.
@@ -44,7 +44,7 @@ export function followOf(plant: Plant, node: number): Follow | undefined {
     // Reaction is between the two ends only: closed ends, whatever they are for tracer.
     const unit = axialElements(mixing.peclet, false);
     if (!unit || !(block.volume > 0)) return refuse("whose Péclet number is too high for its equations in time");
-    return { is: "states", realization: realizationAt(unit, block.volume, pockets) };
+    return { is: "states", realization: realizationAt(unit, block.volume, pockets), flowing: unit.input.length };
   }
   if (pockets) return refuse("a body without back-mixing beside stagnant pockets");
   const mean = block.volume / inflow[node];

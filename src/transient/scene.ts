@@ -3,7 +3,7 @@ import type { Plant } from "../compile/plant.js";
 import { bodyAt } from "../reaction/bodies.js";
 import type { Conditions } from "../reaction/conditions.js";
 import type { Pass } from "../reaction/dispersion.js";
-import type { Kinetics } from "../reaction/kinetics.js";
+import type { Reactions } from "../reaction/kinetics.js";
 import { integrable, type Sort } from "../simulate/integrable.js";
 import { type Blend, blends } from "./blends.js";
 import { type Follow, followOf } from "./follow.js";
@@ -23,15 +23,14 @@ export interface Scene {
   readonly looped: Uint8Array;
   readonly net: ReturnType<typeof integrable>;
   blend(node: number): Blend;
-  /** What happens in mixed liquid at a node, and along one. */
-  cell(node: number): Kinetics;
-  tube(node: number): Kinetics;
+  /** What happens at a node. */
+  at(node: number): Reactions;
   /** What a node makes of a mixture that goes through it. */
   pass(node: number): Pass | undefined;
 }
 
 /** @throws RefusedError where a body cannot be followed in time */
-export function sceneOf(plant: Plant, { reactions }: Conditions): Scene {
+export function sceneOf(plant: Plant, { size: width, reactionsAt }: Conditions): Scene {
   const { size, inflow, part } = plant.columns;
   const follow = Array.from({ length: size }, (_, i) =>
     inflow[i] > 0 || part[i] === 0 ? followOf(plant, i) : undefined,
@@ -41,7 +40,7 @@ export function sceneOf(plant: Plant, { reactions }: Conditions): Scene {
   const { stage, stages } = staged(net, follow);
   return {
     plant,
-    width: reactions.cell.size,
+    width,
     sort: net.sort,
     follow,
     stage,
@@ -49,9 +48,8 @@ export function sceneOf(plant: Plant, { reactions }: Conditions): Scene {
     looped: net.looped,
     net: { ...net, stage, stages },
     blend: blends(plant, net.sort),
-    cell: () => reactions.cell,
-    tube: () => reactions.tube,
-    pass: (node) => bodyAt(plant, node, reactions),
+    at: reactionsAt,
+    pass: (node) => bodyAt(plant, node, reactionsAt(node)),
   };
 }
 

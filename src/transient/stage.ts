@@ -10,7 +10,8 @@ export interface Held {
   readonly first: number;
   readonly states: number;
   readonly realization: Realization | undefined;
-  readonly kinetics: Kinetics;
+  /** By state. */
+  readonly kinetics: readonly Kinetics[];
   /** m3, of each state. */
   readonly volume: Float64Array;
 }
@@ -51,7 +52,10 @@ export class Stage {
       const f = follow[node];
       const realization = f?.is === "states" ? f.realization : undefined;
       const volume = realization?.held ?? Float64Array.of(plant.columns.volume[node]);
-      const own = { node, first, states: volume.length, realization, volume, kinetics: scene.cell(node) };
+      const { cell, pocket } = scene.at(node);
+      const flowing = f?.is === "states" ? f.flowing : 1;
+      const kinetics = Array.from(volume, (_, s) => (s < flowing ? cell : pocket));
+      const own = { node, first, states: volume.length, realization, volume, kinetics };
       first += volume.length;
       return own;
     });
@@ -108,8 +112,10 @@ export class Stage {
 
   rhs(t: number, x: Float64Array, dx: Float64Array, side: number): void {
     for (const { first, states, kinetics } of this.held) {
-      for (let s = first * this.width; s < (first + states) * this.width; s += this.width)
-        kinetics.production(x, s, dx, s);
+      for (let s = 0; s < states; s++) {
+        const at = (first + s) * this.width;
+        kinetics[s].production(x, at, dx, at);
+      }
     }
     this.addFlow(t, x, dx, side);
   }
@@ -158,7 +164,7 @@ export class Stage {
     entries.set(this.fixed);
     for (const { first, states, kinetics } of this.held) {
       for (let s = first; s < first + states; s++) {
-        kinetics.jacobian(x, s * width, slope, 0);
+        kinetics[s - first].jacobian(x, s * width, slope, 0);
         // Less than nothing counts as none: there rates do not move.
         for (let j = 0; j < width; j++) {
           if (x[s * width + j] < 0) for (let i = 0; i < width; i++) slope[i * width + j] = 0;

@@ -30,7 +30,7 @@ export function startingState(
 /** States of a body in balance with what enters it. */
 function balanced(held: Held, flow: number, entering: Float64Array, guess: Float64Array): Float64Array {
   const { realization, kinetics, states: count } = held;
-  const n = kinetics.size;
+  const n = kinetics[0].size;
   const y = new Float64Array(count * n);
   for (let s = 0; s < count; s++) y.set(guess, s * n);
   if (!realization) return y;
@@ -44,7 +44,7 @@ function balanced(held: Held, flow: number, entering: Float64Array, guess: Float
       memory: new Float64Array(count).fill(1 / rate),
       residual(x, f) {
         for (let s = 0; s < count; s++) {
-          kinetics.production(x, s * n, f, s * n);
+          kinetics[s].production(x, s * n, f, s * n);
           for (let i = 0; i < n; i++) {
             let sum = f[s * n + i] + flow * input[s] * entering[i];
             for (let e = through.start[s]; e < through.start[s + 1]; e++)
@@ -58,7 +58,7 @@ function balanced(held: Held, flow: number, entering: Float64Array, guess: Float
       },
       jacobian(x, m) {
         for (let s = 0; s < count; s++) {
-          kinetics.jacobian(x, s * n, slope, 0);
+          kinetics[s].jacobian(x, s * n, slope, 0);
           const d = block(m, s, s);
           for (let e = 0; e < n * n; e++) d[e] += slope[e] / rate;
           const tie = (j: number, a: number): void => {

@@ -173,7 +173,7 @@ function startOf(
   };
 }
 
-function balanceOf(run: Run, plant: Plant, { species, scale, reactions }: Conditions): TransientBalance {
+function balanceOf(run: Run, plant: Plant, { species, scale, numbers }: Conditions): TransientBalance {
   const amounts = amountsOf(run, plant);
   const n = species.length;
   const toSi = (x: Float64Array): Float64Array => scale.map((s, i) => s * x[i]);
@@ -184,7 +184,7 @@ function balanceOf(run: Run, plant: Plant, { species, scale, reactions }: Condit
     before: toSi(amounts.before),
     held: toSi(amounts.held),
     closure: closureOf(amounts).slice(0, n),
-    conserved: conservedClosure(conservedBy(reactions.cell.numbers, n), amounts),
+    conserved: conservedClosure(conservedBy(numbers, n), amounts),
   };
 }
 

@@ -29,7 +29,7 @@ export interface TubeAsk {
 export function tubeSignal({ scene, node, delay, inlet, start, basis, breaks, longest }: TubeAsk): Sampled {
   const { width } = scene;
   const pass = scene.pass(node);
-  const kinetics = scene.tube(node);
+  const kinetics = scene.at(node).tube;
   const entered = new Float64Array(width);
   const last = { entered: new Float64Array(width).fill(Number.NaN), left: new Float64Array(width), good: false };
   const source = {
