@@ -51,7 +51,7 @@ function finite(what: string, value: Value, env: Float64Array, report: Report): 
 }
 
 /** The declaration of a key, or of one inside it: `stagnant.volume`. */
-function shapeOf(keys: Readonly<Record<string, KeyShape>>, path: string): Shape | undefined {
+export function shapeOf(keys: Readonly<Record<string, KeyShape>>, path: string): Shape | undefined {
   const [first, ...rest] = path.split(".");
   const shape = keys[first]?.shape;
   return rest.length > 0 && shape?.is === "record" ? shapeOf(shape.keys, rest.join(".")) : shape;

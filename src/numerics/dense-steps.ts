@@ -5,9 +5,10 @@ const mostKept = 64;
 /** Rate times step up to which a step that comes once is a series of vectors. */
 const longest = 12;
 
+/** Matrices of one step length; memory that is used again for the next system. */
 interface Step {
-  readonly h: number;
-  readonly matrix: Float64Array;
+  h: number;
+  matrix: Float64Array;
 }
 
 /**
@@ -18,15 +19,17 @@ interface Step {
  */
 export class DenseSteps {
   /** Numbers in a state. */
-  readonly length: number;
-  private readonly rate: number;
-  private readonly jump: Float64Array;
+  length = 0;
+  private rate = 0;
+  private jump = new Float64Array(0);
   private readonly kept: Step[] = [];
+  private inUse = 0;
   private last: Step | undefined;
   /** Length of the last step that was a series. */
   private once = Number.NaN;
-  private readonly term: Float64Array;
-  private readonly scratch: Float64Array;
+  private term = new Float64Array(0);
+  private scratch = new Float64Array(0);
+  private workspace: Float64Array[] = [];
 
   /**
    * @param n  order of A
@@ -36,16 +39,31 @@ export class DenseSteps {
     private readonly n: number,
     a: Float64Array,
   ) {
+    this.reset(a);
+  }
+
+  /** Another system of the same order; it may have other directions. */
+  reset(a: Float64Array): void {
+    const { n } = this;
     const count = n === 0 ? 0 : a.length / (n * n);
-    this.length = n * count;
-    this.scratch = new Float64Array(this.length);
-    this.term = new Float64Array(this.length);
+    if (this.length !== n * count || this.jump.length !== a.length) {
+      this.length = n * count;
+      this.scratch = new Float64Array(this.length);
+      this.term = new Float64Array(this.length);
+      this.jump = new Float64Array(a.length);
+      this.workspace = [];
+      this.kept.length = 0;
+    }
+    this.inUse = 0;
+    this.last = undefined;
+    this.once = Number.NaN;
     let rate = 0;
     for (let i = 0; i < n; i++) rate = Math.max(rate, -a[i * n + i]);
     this.rate = rate;
-    this.jump = Float64Array.from(a);
-    if (rate > 0) for (let k = 0; k < a.length; k++) this.jump[k] /= rate;
-    if (rate > 0) for (let i = 0; i < n; i++) this.jump[i * n + i] += 1;
+    const { jump } = this;
+    const by = rate > 0 ? rate : 1;
+    for (let k = 0; k < a.length; k++) jump[k] = a[k] / by;
+    if (rate > 0) for (let i = 0; i < n; i++) jump[i * n + i] += 1;
   }
 
   /**
@@ -54,102 +72,104 @@ export class DenseSteps {
    * @returns the length of the step that was taken
    */
   advance(v: Float64Array, h: number, slack: number): number {
-    if (!(h > 0)) return h;
+    return this.move(v, 0, v, 0, h, slack);
+  }
+
+  /** The same from one place to another: `to` from `into` on <- `from` from `at` on, a time h later. */
+  move(from: Float64Array, at: number, to: Float64Array, into: number, h: number, slack: number): number {
     const { last } = this;
-    if (last && Math.abs(last.h - h) <= slack) {
-      this.apply(last.matrix, v);
+    if (last && Math.abs(last.h - h) <= slack && h > 0) {
+      this.apply(last.matrix, from, at, to, into);
       return last.h;
     }
-    let step = this.kept.find((s) => Math.abs(s.h - h) <= slack);
-    if (!step && !(Math.abs(this.once - h) <= slack) && this.rate * h <= longest) {
+    const step = h > 0 ? this.stepOf(h, slack) : undefined;
+    if (step) {
+      this.last = step;
+      this.apply(step.matrix, from, at, to, into);
+      return step.h;
+    }
+    for (let i = 0; i < this.length; i++) to[into + i] = from[at + i];
+    if (h > 0) this.series(to, into, h);
+    return h;
+  }
+
+  /** The matrices of a step length; undefined where a series of vectors serves, once. */
+  private stepOf(h: number, slack: number): Step | undefined {
+    const { kept } = this;
+    for (let k = 0; k < this.inUse; k++) if (Math.abs(kept[k].h - h) <= slack) return kept[k];
+    if (!(Math.abs(this.once - h) <= slack) && this.rate * h <= longest) {
       this.once = h;
-      this.series(v, h);
-      return h;
+      return undefined;
     }
-    if (!step) {
-      step = { h, matrix: this.exponential(h) };
-      if (this.kept.length < mostKept) this.kept.push(step);
-    }
-    this.last = step;
-    this.apply(step.matrix, v);
-    return step.h;
+    const matrix = this.exponential(h);
+    if (this.inUse === mostKept) return { h, matrix: matrix.slice() };
+    const place = this.inUse++;
+    kept[place] ??= { h, matrix: new Float64Array(matrix.length) };
+    kept[place].h = h;
+    kept[place].matrix.set(matrix);
+    return kept[place];
   }
 
   /** One step by the series of vectors: cheaper than a matrix that is used once. */
-  private series(v: Float64Array, h: number): void {
+  private series(v: Float64Array, at: number, h: number): void {
     const { jump, rate, length, term } = this;
     const theta = rate > 0 ? rate * h : h;
     let weight = rate > 0 ? Math.exp(-theta) : 1;
-    term.set(v);
-    for (let i = 0; i < length; i++) v[i] *= weight;
+    for (let i = 0; i < length; i++) {
+      term[i] = v[at + i];
+      v[at + i] *= weight;
+    }
     for (let k = 1; k < 200; k++) {
       weight *= theta / k;
-      this.apply(jump, term);
+      this.apply(jump, term, 0, term, 0);
       let size = 0;
       for (let i = 0; i < length; i++) {
-        v[i] += weight * term[i];
+        v[at + i] += weight * term[i];
         size += Math.abs(term[i]);
       }
       if ((k > theta && weight * k < 1e-18) || size === 0) return;
     }
   }
 
-  private apply(e: Float64Array, v: Float64Array): void {
-    const { n, length, scratch } = this;
+  private apply(e: Float64Array, from: Float64Array, at: number, to: Float64Array, into: number): void {
+    const { n, length } = this;
     if (n <= 2) {
-      if (n === 1) this.applyToOne(e, v);
-      else if (n === 2) this.applyToTwo(e, v);
+      if (n === 1) applyToOne(e, length, from, at, to, into);
+      else if (n === 2) applyToTwo(e, length, from, at, to, into);
       return;
     }
+    const inPlace = from === to && at === into;
+    const made = inPlace ? this.scratch : to;
+    const base = inPlace ? 0 : into;
     for (let i = 0; i < n; i++) {
       let sum = 0;
-      for (let j = 0; j < n; j++) sum += e[i * n + j] * v[j];
-      scratch[i] = sum;
+      for (let j = 0; j < n; j++) sum += e[i * n + j] * from[at + j];
+      made[base + i] = sum;
     }
-    for (let from = n; from < length; from += n) {
-      const d = from * n;
+    for (let block = n; block < length; block += n) {
+      const d = block * n;
       for (let i = 0; i < n; i++) {
         let sum = 0;
-        for (let j = 0; j < n; j++) sum += e[i * n + j] * v[from + j] + e[d + i * n + j] * v[j];
-        scratch[from + i] = sum;
+        for (let j = 0; j < n; j++) sum += e[i * n + j] * from[at + block + j] + e[d + i * n + j] * from[at + j];
+        made[base + block + i] = sum;
       }
     }
-    v.set(scratch);
+    if (inPlace) for (let i = 0; i < length; i++) to[into + i] = made[i];
   }
 
-  private applyToOne(e: Float64Array, v: Float64Array): void {
-    const x = v[0];
-    v[0] = e[0] * x;
-    for (let p = 1; p < this.length; p++) v[p] = e[0] * v[p] + e[p] * x;
-  }
-
-  private applyToTwo(e: Float64Array, v: Float64Array): void {
-    const e0 = e[0];
-    const e1 = e[1];
-    const e2 = e[2];
-    const e3 = e[3];
-    const x = v[0];
-    const y = v[1];
-    v[0] = e0 * x + e1 * y;
-    v[1] = e2 * x + e3 * y;
-    for (let p = 2; p < this.length; p += 2) {
-      const a = v[p];
-      const b = v[p + 1];
-      const d = 2 * p;
-      v[p] = e0 * a + e1 * b + e[d] * x + e[d + 1] * y;
-      v[p + 1] = e2 * a + e3 * b + e[d + 2] * x + e[d + 3] * y;
-    }
-  }
-
+  /** exp(A h) and its derivatives; good until the next. */
   private exponential(h: number): Float64Array {
     const { n, jump, rate } = this;
     const theta = rate * h;
     const doublings = theta > short ? Math.ceil(Math.log2(theta / short)) : 0;
     const small = rate > 0 ? theta / 2 ** doublings : h;
     const first = rate > 0 ? Math.exp(-small) : 1;
-    let sum = new Float64Array(jump.length);
-    let term = new Float64Array(jump.length);
-    let next = new Float64Array(jump.length);
+    this.workspace[0] ??= new Float64Array(jump.length);
+    this.workspace[1] ??= new Float64Array(jump.length);
+    this.workspace[2] ??= new Float64Array(jump.length);
+    let [sum, term, next] = this.workspace;
+    sum.fill(0);
+    term.fill(0);
     for (let i = 0; i < n; i++) sum[i * n + i] = term[i * n + i] = first;
     // The derivatives' terms are at most k times as large as the weight: a few more terms carry them too.
     let weight = 1;
@@ -184,5 +204,43 @@ function product(a: Float64Array, b: Float64Array, n: number, c: Float64Array, f
         c[from + i * n + j] = factor * sum;
       }
     }
+  }
+}
+
+function applyToOne(
+  e: Float64Array,
+  length: number,
+  from: Float64Array,
+  at: number,
+  to: Float64Array,
+  into: number,
+): void {
+  const x = from[at];
+  to[into] = e[0] * x;
+  for (let p = 1; p < length; p++) to[into + p] = e[0] * from[at + p] + e[p] * x;
+}
+
+function applyToTwo(
+  e: Float64Array,
+  length: number,
+  from: Float64Array,
+  at: number,
+  to: Float64Array,
+  into: number,
+): void {
+  const e0 = e[0];
+  const e1 = e[1];
+  const e2 = e[2];
+  const e3 = e[3];
+  const x = from[at];
+  const y = from[at + 1];
+  to[into] = e0 * x + e1 * y;
+  to[into + 1] = e2 * x + e3 * y;
+  for (let p = 2; p < length; p += 2) {
+    const a = from[at + p];
+    const b = from[at + p + 1];
+    const d = 2 * p;
+    to[into + p] = e0 * a + e1 * b + e[d] * x + e[d + 1] * y;
+    to[into + p + 1] = e2 * a + e3 * b + e[d + 2] * x + e[d + 3] * y;
   }
 }

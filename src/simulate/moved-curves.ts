@@ -30,32 +30,38 @@ function addDensely(system: MovedSystem, drive: Drive, times: readonly Float64Ar
   system.probes.forEach((passages, r) => {
     for (const passage of passages) {
       const { states, weights, direct, delays } = passage;
-      const [first, local] = localTimes(times[r], passage.delay);
+      const first = firstSeen(times[r], passage.delay);
       const looks = into.slopes.map((_, p) => lookOf(system, passage, p));
       const value = into.value[r];
       const moving = states.length > 0 || looks.some((look) => look.states.length > 0);
-      steps.walk(local, moving, (i, v, rate, slope) => {
+      const path = steps.along(times[r], first, { start: 0, delay: passage.delay }, moving);
+      for (let i = 0; first + i < value.length; i++) {
+        const [v, at, rate] = [path.states, i * path.length, path.rate[i]];
         let sum = direct * rate;
-        for (let j = 0; j < states.length; j++) sum += weights[j] * v[states[j]];
+        for (let j = 0; j < states.length; j++) sum += weights[j] * v[at + states[j]];
         value[first + i] += sum;
         for (let p = 0; p < looks.length; p++) {
           const look = looks[p];
-          const own = (p + 1) * n;
-          let moved = look.direct * rate - delays[p] * direct * slope;
+          const own = at + (p + 1) * n;
+          let moved = look.direct * rate - delays[p] * direct * path.rise[i];
           for (let j = 0; j < states.length; j++) moved += weights[j] * v[own + states[j]];
-          for (let j = 0; j < look.states.length; j++) moved += look.weights[j] * v[look.states[j]];
+          for (let j = 0; j < look.states.length; j++) moved += look.weights[j] * v[at + look.states[j]];
           into.slopes[p][r][first + i] += moved;
         }
-      });
+      }
     }
   });
 }
 
-/** The times at which tracer has come, counted from then, and the index of the first. */
-function localTimes(times: Float64Array, delay: number): [number, Float64Array] {
-  let first = 0;
-  while (first < times.length && since(times[first], delay) < 0) first++;
-  return [first, times.subarray(first).map((t) => since(t, delay))];
+/** The first time at which tracer has come. */
+export function firstSeen(times: Float64Array, delay: number, start = 0): number {
+  let [low, high] = [0, times.length];
+  while (low < high) {
+    const middle = (low + high) >> 1;
+    if (since(times[middle] - start, delay) < 0) low = middle + 1;
+    else high = middle;
+  }
+  return low;
 }
 
 /** The part of a derivative that is read from the states themselves: moved weights, and the shift in time. */

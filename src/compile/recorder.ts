@@ -1,0 +1,93 @@
+import { recordExpression } from "../expressions/record.js";
+import type { Network } from "../model/network.js";
+import type { Value } from "../model/value.js";
+import { type Slot, Tape } from "../numerics/tape.js";
+import { evaluateNames } from "./evaluate.js";
+import type { Settings } from "./plant.js";
+
+/** Thrown and caught within recording: this cannot be written down once and for all. */
+export class NotRecorded extends Error {}
+
+/** A tape with the names of a network on it. */
+export class Recorder {
+  readonly tape = new Tape();
+  /**
+   * What must stay above zero for the recording to hold: nothing that is there vanishes, nothing becomes impossible. Where one
+   * is not, compiling tells what there is.
+   */
+  readonly positive = new Set<Slot>();
+  /** Values of names where it was recorded, and their slots; both by the names' places. */
+  private env: Float64Array = new Float64Array(0);
+  private slots: readonly Slot[] = [];
+
+  /** @param inputs  names that are set from outside, in the order of the inputs */
+  constructor(
+    private readonly network: Network,
+    readonly inputs: readonly string[],
+    settings: Settings,
+    onDay: readonly (readonly [string, Value])[],
+  ) {
+    const set = new Map<string, Slot>(inputs.map((name) => [name, this.tape.input()]));
+    this.names(settings, set);
+    if (onDay.length === 0) return;
+    const day = { ...settings };
+    for (const [name, value] of onDay) {
+      day[name] = value.of(this.env);
+      set.set(name, this.value(value));
+    }
+    this.names(day, set);
+  }
+
+  /** A value made of names. */
+  value(value: Value): Slot {
+    const slotOf = (name: string): Slot | undefined => {
+      const named = this.network.names.find((n) => n.name === name);
+      return named && this.slots[named.slot];
+    };
+    const stays = value.uses.every((name) => {
+      const slot = slotOf(name);
+      return slot !== undefined && this.tape.known(slot) !== undefined;
+    });
+    if (stays) return this.tape.constant(value.of(this.env));
+    const slot = recordExpression(this.tape, value.expression, slotOf);
+    if (slot === undefined) throw new NotRecorded();
+    return slot;
+  }
+
+  /** The value where it was recorded. */
+  at(value: Value): number {
+    return value.of(this.env);
+  }
+
+  /** Value of a name. */
+  named(slot: number): Slot {
+    return this.slots[slot];
+  }
+
+  moves(slot: Slot): boolean {
+    return this.tape.known(slot) === undefined;
+  }
+
+  /** What is above zero where it was recorded, and must stay so. */
+  keepPositive(slot: Slot, here: number): void {
+    if (!this.moves(slot)) return;
+    if (!(here > 0)) throw new NotRecorded();
+    this.positive.add(slot);
+  }
+
+  private names(settings: Settings, set: ReadonlyMap<string, Slot>): void {
+    const { network } = this;
+    const env = evaluateNames(network, settings);
+    const slots: Slot[] = [];
+    this.env = env;
+    this.slots = slots;
+    const bySlot = new Map(network.names.map((n) => [n.slot, n]));
+    for (const slot of network.order) {
+      const n = bySlot.get(slot);
+      if (!n) continue;
+      const given = set.get(n.name);
+      if (given === undefined && n.role === "inflow") throw new NotRecorded();
+      slots[slot] = given ?? this.value(n.value);
+    }
+  }
+}

@@ -1,0 +1,169 @@
+import type { Program, Slot } from "../numerics/tape.js";
+import { type DenseSystem, DrivenSteps } from "./driven-steps.js";
+import { firstSeen } from "./moved-curves.js";
+import type { RecordedPassage, RecordedPut, RecordedTrial } from "./record-trial.js";
+
+/** Curves of the readings and their derivatives by direction, SI. */
+export interface Replayed {
+  readonly curves: readonly Float64Array[];
+  readonly slopes: readonly (readonly Float64Array[])[];
+}
+
+/** Memory for one injection with so many directions. */
+interface Work {
+  readonly put: RecordedPut;
+  readonly directions: number;
+  readonly system: DenseSystem;
+  readonly steps: DrivenSteps;
+  /** What a passage sees of the states, how that moves by direction, and how what is seen changes with time. */
+  readonly weights: Float64Array;
+  readonly moved: Float64Array;
+  readonly rates: Float64Array;
+}
+
+/** Memory is kept for so many of them. */
+const mostWork = 12;
+
+/** A recorded trial that is run again and again at other values. */
+export class Replay {
+  private readonly program: Program;
+  private readonly positive: Int32Array;
+  private readonly work: Work[] = [];
+
+  constructor(
+    private readonly recorded: RecordedTrial,
+    private readonly decay: number,
+  ) {
+    this.program = recorded.recorder.tape.program();
+    this.positive = Int32Array.from(recorded.recorder.positive);
+  }
+
+  /** Names of the inputs, in their order. */
+  get inputs(): readonly string[] {
+    return this.recorded.recorder.inputs;
+  }
+
+  /**
+   * @param inputs  SI
+   * @param seeds   by input and direction, `directions` in a row for each input
+   * @returns undefined where the recording does not hold
+   */
+  run(
+    inputs: Float64Array,
+    wanted: readonly { readonly time: Float64Array }[],
+    seeds: Float64Array,
+    directions: number,
+  ): Replayed | undefined {
+    const { program, positive } = this;
+    program.run(inputs);
+    for (let i = 0; i < positive.length; i++) if (!(program.value[positive[i]] > 0)) return undefined;
+    program.slopes(seeds, directions);
+    const zeros = (): Float64Array[] => wanted.map(({ time }) => new Float64Array(time.length));
+    const curves = zeros();
+    const slopes = Array.from({ length: directions }, zeros);
+    for (const put of this.recorded.puts) this.add(put, wanted, directions, { curves, slopes });
+    return { curves, slopes };
+  }
+
+  private add(
+    put: RecordedPut,
+    wanted: readonly { readonly time: Float64Array }[],
+    directions: number,
+    into: Replayed,
+  ): void {
+    const n = put.states;
+    const work = this.workFor(put, directions);
+    const { a, b } = work.system;
+    for (const { row, column, slot } of put.rates) this.spread(slot, directions, a, row * n + column, n * n);
+    for (let i = 0; i < n; i++) this.spread(put.input[i], directions, b, i, n);
+    work.steps.reset(work.system);
+    for (const passage of put.passages) this.addPassage(passage, put.start, work, wanted, into);
+  }
+
+  /** Memory for a system with so many directions. */
+  private workFor(put: RecordedPut, directions: number): Work {
+    const known = this.work.find((w) => w.put === put && w.directions === directions);
+    if (known) return known;
+    const n = put.states;
+    const system = { n, a: new Float64Array((1 + directions) * n * n), b: new Float64Array((1 + directions) * n) };
+    const work: Work = {
+      put,
+      directions,
+      system,
+      steps: new DrivenSteps(system, put.drive),
+      weights: new Float64Array(n),
+      moved: new Float64Array(directions * n),
+      rates: new Float64Array(n),
+    };
+    this.work.push(work);
+    if (this.work.length > mostWork) this.work.shift();
+    return work;
+  }
+
+  /** A number and its derivatives, `apart` from one to the next. */
+  private spread(slot: Slot, directions: number, into: Float64Array, at: number, apart: number): void {
+    const { value, slope } = this.program;
+    into[at] = value[slot];
+    for (let d = 0; d < directions; d++) into[at + (d + 1) * apart] = slope[slot * directions + d];
+  }
+
+  private addPassage(
+    passage: RecordedPassage,
+    start: number,
+    { system: { n, a, b }, steps, weights: w, moved: dw, rates }: Work,
+    wanted: readonly { readonly time: Float64Array }[],
+    into: Replayed,
+  ): void {
+    const { reading, share, states } = passage;
+    const { time } = wanted[reading];
+    const count = into.slopes.length;
+    const { value: v, slope } = this.program;
+    const delay = v[passage.delay];
+    const first = firstSeen(time, delay, start);
+    w.fill(0);
+    dw.fill(0);
+    rates.fill(0);
+    for (let j = 0; j < states.length; j++) {
+      w[states[j]] = v[passage.weights[j]];
+      for (let d = 0; d < count; d++) dw[d * n + states[j]] = slope[passage.weights[j] * count + d];
+    }
+    let rateOfDrive = 0;
+    for (let i = 0; i < n; i++) {
+      rateOfDrive += w[i] * b[i];
+      for (let j = 0; j < n; j++) rates[j] += w[i] * a[i * n + j];
+    }
+    const direct = v[passage.direct];
+    const path = steps.along(time, first, { start, delay }, states.length > 0);
+    const size = time.length - first;
+    const { states: x, length, rate, rise } = path;
+    const counts = this.counting(share, start, time, first);
+    const curve = into.curves[reading];
+    for (let i = 0; i < size; i++) {
+      let sum = direct * rate[i];
+      for (let j = 0; j < n; j++) sum += w[j] * x[i * length + j];
+      curve[first + i] += counts ? counts[i] * sum : sum;
+    }
+    for (let d = 0; d < count; d++) {
+      const moved = into.slopes[d][reading];
+      const own = (d + 1) * n;
+      const late = slope[passage.delay * count + d];
+      const onward = slope[passage.direct * count + d] - late * rateOfDrive;
+      const turn = -late * direct;
+      const from = d * n;
+      for (let j = 0; j < n; j++) dw[from + j] -= late * rates[j];
+      for (let i = 0; i < size; i++) {
+        let sum = onward * rate[i] + turn * rise[i];
+        const at = i * length;
+        for (let j = 0; j < n; j++) sum += w[j] * x[at + own + j] + dw[from + j] * x[at + j];
+        moved[first + i] += counts ? counts[i] * sum : sum;
+      }
+    }
+  }
+
+  /** By time: the share that a reading draws, as far as it has not decayed; undefined where it is all. */
+  private counting(share: number, start: number, time: Float64Array, first: number): Float64Array | undefined {
+    const { decay } = this;
+    if (share === 1 && decay === 0) return undefined;
+    return time.subarray(first).map((t) => share * Math.exp(-decay * (t - start)));
+  }
+}

@@ -1,0 +1,148 @@
+import { describe, expect, test } from "vitest";
+import { compiler } from "../../src/compile/compile.js";
+import type { Settings } from "../../src/compile/plant.js";
+import { recordPlant } from "../../src/compile/record.js";
+import { networkModel, setOnDay } from "../../src/fit/network-model.js";
+import { settingsOfDay } from "../../src/fit/settings.js";
+import type { Network } from "../../src/model/network.js";
+import type { Trial } from "../../src/model/trial.js";
+import { recordTrial } from "../../src/simulate/record-trial.js";
+import { Replay } from "../../src/simulate/replay.js";
+import { randomNetwork } from "../simulate/random-network.js";
+import { networkOf } from "./load.js";
+import { parametrised, pulse, times, trialWith, vessel } from "./slope-errors.js";
+
+const parametersOf = (network: Network): Record<string, number> => {
+  const { plant } = compiler(network).compile({});
+  if (!plant) throw new Error("no plant");
+  return Object.fromEntries(
+    network.names.flatMap((n) => (n.role === "parameter" ? [[n.name, plant.env[n.slot]]] : [])),
+  );
+};
+
+function replayOf(network: Network, trial: Trial, values: Settings): Replay | undefined {
+  const { compile, plan } = compiler(network);
+  const { plant } = compile(settingsOfDay(network, trial, values));
+  const recorded = plant && recordPlant(network, plan, plant, values, setOnDay(trial));
+  const made = recorded && recordTrial(recorded, trial);
+  return made && new Replay(made, trial.tracer?.decay ?? 0);
+}
+
+/**
+ * A recording made at the file's values, played at others, beside the way that compiles those: the largest difference of the
+ * curve and of its derivatives by the logarithm of each parameter, as a part of the larger of both's peaks.
+ */
+function apart(network: Network, trial: Trial): number | undefined {
+  const values = parametersOf(network);
+  const names = Object.keys(values);
+  const replay = replayOf(network, trial, values);
+  if (!replay) return undefined;
+  const wanted = trial.readings.map(() => ({ time: times }));
+  const n = names.length;
+  const seeds = Float64Array.from({ length: n * n }, (_, k) => (k % (n + 1) === 0 ? 1 : 0));
+  let worst = 0;
+  for (const by of [0, 0.03, -0.05]) {
+    const moved = Object.fromEntries(names.map((name, k) => [name, values[name] * (1 + by * Math.cos(k))]));
+    const played = replay.run(
+      Float64Array.from(names, (name) => moved[name]),
+      wanted,
+      seeds,
+      n,
+    );
+    const directions = names.map((name) => ({ names: new Map([[name, 1]]) }));
+    // A trial that is new to a model is not recorded.
+    const compiled = networkModel(network).slopes?.(trial, { values: moved, shifted: new Set() }, wanted, directions);
+    if (!played || !compiled) throw new Error("no vessel");
+    wanted.forEach((_, r) => {
+      const peak = Math.max(...compiled.curves[r]);
+      const compare = (a: Float64Array, b: Float64Array, by: number): void => {
+        const size = Math.max(peak, by * Math.max(...b.map(Math.abs)));
+        for (let i = 0; i < a.length; i++) worst = Math.max(worst, (by * Math.abs(a[i] - b[i])) / size);
+      };
+      compare(played.curves[r], compiled.curves[r], 1);
+      names.forEach((name, d) => {
+        const slope = compiled.slopes[d];
+        if (slope) compare(played.slopes[d][r], slope[r], moved[name]);
+      });
+    });
+  }
+  return worst;
+}
+
+describe("a recording gives what compiling anew gives, curves and derivatives", () => {
+  test("random networks", () => {
+    let recorded = 0;
+    for (let seed = 1; seed <= 40; seed++) {
+      const network = networkOf(parametrised(randomNetwork(seed)));
+      const off = apart(network, trialWith(pulse));
+      if (off === undefined) continue;
+      recorded++;
+      expect(off, `network ${seed}`).toBeLessThan(1e-9);
+    }
+    expect(recorded).toBeGreaterThan(15);
+  });
+
+  test.each([
+    [
+      "a chain with pockets",
+      "  a: {kind: stirred, repeat: 2, volume: 100 L, stagnant: {volume: 20 L, exchange: 1 L/min}, to: out}",
+    ],
+    [
+      "tubes side by side",
+      "  a: {kind: junction, to: {b: 30 %, c: rest}}\n  b: {kind: tubular, volume: 20 L, to: d}\n  c: {kind: tubular, volume: 90 L, to: d}\n  d: {kind: stirred, volume: 50 L, to: out}",
+    ],
+    [
+      "a loop of tanks",
+      "  a: {kind: stirred, volume: 100 L, to: b}\n  b: {kind: stirred, volume: 30 L, to: {a: 2 L/min, out: rest}}",
+    ],
+    ["a bypass alone", "  a: {kind: junction, to: {b: 30 %, out: rest}}\n  b: {kind: tubular, volume: 20 L, to: out}"],
+  ])("%s", (_, body) => {
+    expect(apart(networkOf(parametrised(vessel(body))), trialWith(pulse))).toBeLessThan(1e-9);
+  });
+
+  const tank = parametrised(
+    vessel("  a: {kind: tubular, volume: 30 L, to: b}\n  b: {kind: stirred, volume: 100 L, to: out}"),
+  );
+  test.each([
+    ["at once", "{at: feed, pulse: 50 g, start: 0 min}", ""],
+    ["a step through a line", "{at: feed, step: 2 g/L, start: 1 min}", "    line: {delay: 0.31 min, lag: 0.4 min}\n"],
+    ["a dosing rate for a while", "{at: b, step: 3 g/min, start: 1 min, lasting: 20 min}", ""],
+  ])("what is put in: %s", (_, injection, line) => {
+    expect(apart(networkOf(tank), trialWith(injection, line))).toBeLessThan(1e-9);
+  });
+
+  test("a day with a flow of its own", () => {
+    const trial = trialWith(pulse, "", "flows: {feed: 11 L/min}\n");
+    expect(apart(networkOf(tank), trial)).toBeLessThan(1e-9);
+  });
+
+  test("values made of values, shares of flows, functions", () => {
+    const parameters =
+      "parameters: {x: {value: 0.3, between: [0, 1]}, q: {value: 2 L/min, between: [0.1 L/min, 5 L/min]}}\nconstants: {y: 2 * x + 0.1 * x ^ 2, v: 100 L * (1 - y / 3)}\n";
+    const body =
+      "  a: {kind: stirred, volume: v, to: {out: 0.5 * x, b: rest}, exchange: {c: q * exp(x)}}\n  b: {kind: tubular, volume: 20 L * sqrt(x), to: out}\n  c: {kind: stirred, volume: 30 L + v / 10}";
+    expect(apart(networkOf(vessel(body, parameters)), trialWith(pulse))).toBeLessThan(1e-9);
+  });
+});
+
+describe("a recording ends where its structure does", () => {
+  const text = vessel(
+    "  a: {kind: stirred, volume: 100 L - v, to: b}\n  b: {kind: tubular, volume: v, to: {out: rest, a: q}}",
+    "parameters: {v: {value: 30 L, between: [0 L, 200 L]}, q: {value: 0 L/min, between: [0 L/min, 5 L/min]}}\n",
+  );
+  test("nothing that may vanish is recorded where it is nothing; loops of tubes are not", () => {
+    expect(replayOf(networkOf(text), trialWith(pulse), { v: 0.03, q: 0 })).toBeUndefined();
+    expect(replayOf(networkOf(text), trialWith(pulse), { v: 0.03, q: 1e-5 })).toBeUndefined();
+  });
+
+  test("values that make no vessel, or another one, are not played", () => {
+    const other = vessel(
+      "  a: {kind: stirred, volume: 100 L - v, to: b}\n  b: {kind: tubular, volume: v, to: out}",
+      "parameters: {v: {value: 30 L, between: [0 L, 200 L]}}\nrequires: [v < 80 L]\n",
+    );
+    const replay = replayOf(networkOf(other), trialWith(pulse), { v: 0.03 });
+    const played = (v: number) => replay?.run(Float64Array.of(v), [{ time: times }], new Float64Array(0), 0);
+    expect(played(0.05)).toBeDefined();
+    for (const v of [-0.01, 0, 0.08, 0.09, 0.1, 0.15, Number.NaN]) expect(played(v), String(v)).toBeUndefined();
+  });
+});
