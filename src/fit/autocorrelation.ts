@@ -13,6 +13,8 @@ export interface Autocorrelation {
   readonly effective: number;
   /** The same for a variance. */
   readonly effectiveForVariance: number;
+  /** Twice the log-likelihood that hanging together adds to that of independent residuals of these sizes. */
+  readonly gain: number;
   /** The readings that hang together, in the order of the blocks. */
   readonly strands: readonly Strand[];
 }
@@ -56,6 +58,8 @@ export function autocorrelationOf(
     return [{ block, time, gain, rows: Int32Array.from(rows), phi: links(chains[block], time) }];
   });
   const lag1 = lagOne(chains, residuals);
+  const together = chains.map((c, k) => (strands.some((s) => s.block === k) ? c : none));
+  const whole = strands.length > 0 ? correlationTimes(residuals, [], together) : [];
   const linked = new Map(strands.map((s) => [s.block, s.phi]));
   let [effective, square] = [0, 0];
   for (const [k, c] of chains.entries()) {
@@ -70,6 +74,7 @@ export function autocorrelationOf(
     significant: strands.length > 0,
     effective,
     effectiveForVariance: square > 0 ? n ** 2 / square : n,
+    gain: whole.reduce((sum, { gain }) => sum + gain, 0),
     strands,
   };
 }

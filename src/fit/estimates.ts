@@ -152,17 +152,21 @@ function nuisanceOf(
       ...(block.declared.scale === "free" ? { scale: add("scale", scale, bare) } : {}),
       ...(block.declared.baseline !== "none" ? { offset: add("offset", offset, { ...unit, offset: 0 }) } : {}),
       ...(block.declared.baseline === "drift" ? { drift: add("drift", drift, drifting) } : {}),
+      ...(block.declared.correlated === "fitted"
+        ? { correlation: { value: block.hangsTogether ?? 0, unit: perTime, standardError: undefined } }
+        : {}),
     };
   }
   return { nuisance, names };
 }
 
 /** Weighted change of the measurements for one standard deviation of each thing that a calibration leaves open, with rows for priors. */
-function calibrationShifts({ setup, weight, priors }: Settled["problem"]): Float64Array[] {
-  return setup.blocks.flatMap((b) =>
+function calibrationShifts({ setup, weight, priors, projectors }: Settled["problem"]): Float64Array[] {
+  return setup.blocks.flatMap((b, k) =>
     b.doubts.map((doubt) => {
       const shift = new Float64Array(setup.observations + priors.length);
       for (let i = 0; i < doubt.length; i++) shift[b.from + i] = doubt[i] * weight[b.from + i];
+      projectors[k].apart(shift);
       return shift;
     }),
   );

@@ -135,6 +135,7 @@ function resultOf(setup: Setup, settled: Settled, found: SearchResult, profile: 
   );
   const converged = settled.converged && !found.cancelled;
   const n = setup.coordinates.length;
+  const { significant, gain, strands, effective } = estimates.autocorrelation;
   const readings = readingsOf(setup, settled);
   const told = converged && !watch.cancelled();
   const profiles = profile && told ? profilesOf(settled, estimates, watch) : undefined;
@@ -147,7 +148,14 @@ function resultOf(setup: Setup, settled: Settled, found: SearchResult, profile: 
     residualUnit: unit,
     observations,
     freeParameters,
-    ...criteriaOf(at.ofData, observations, freeParameters, weights.variances, weights.logVariances),
+    ...criteriaOf(
+      at.ofData,
+      observations,
+      freeParameters,
+      weights.variances,
+      weights.logVariances,
+      significant ? { gain, times: strands.length, effective } : undefined,
+    ),
     correlation: estimates.correlation,
     covariance: estimates.covariance,
     freedom: estimates.told,

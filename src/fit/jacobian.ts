@@ -38,14 +38,14 @@ export function projectedJacobian(problem: Problem, x: Float64Array, at: Evaluat
  * @returns columns, each as long as the residuals
  */
 export function fullJacobian(problem: Problem, x: Float64Array, at: Evaluation): Float64Array[] {
-  const { setup, projectors, priors, weight } = problem;
+  const { setup, projectors, priors } = problem;
   const rows = at.residuals.length;
   const columns: Float64Array[] = [];
   const slopes = allCurveSlopes(setup, x, at);
   for (let j = 0; j < x.length; j++) {
     const c = new Float64Array(rows);
     const moved = slopes[j];
-    if (moved) weighCurves(setup, moved, at, weight, c);
+    if (moved) weighCurves(problem, moved, at, c);
     for (const [p, prior] of priors.entries()) {
       if (prior.index === j) c[setup.observations + p] = -prior.slope(x[j]);
     }
@@ -78,20 +78,20 @@ export function constantSlope(
   const slopes = exact ?? difference(curves, 1e-3, at.curves, true, true);
   if (!slopes) return undefined;
   const c = new Float64Array(at.residuals.length);
-  weighCurves(setup, slopes, at, problem.weight, c);
+  weighCurves(problem, slopes, at, c);
   return c;
 }
 
 function weighCurves(
-  setup: Setup,
+  { setup, weight, projectors }: Problem,
   slopes: readonly Float64Array[],
   at: Evaluation,
-  weight: Float64Array,
   into: Float64Array,
 ): void {
   for (const [b, block] of setup.blocks.entries()) {
     const { scale } = at.terms[b];
     for (let i = 0; i < block.time.length; i++) into[block.from + i] = weight[block.from + i] * scale * slopes[b][i];
+    projectors[b].apart(into);
   }
 }
 

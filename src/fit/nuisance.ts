@@ -1,3 +1,5 @@
+import { links, whiten } from "../numerics/autoregression.js";
+import { chainOf } from "./autocorrelation.js";
 import type { Block } from "./observations.js";
 
 /** Best linear terms of one reading beside a given curve, SI. Drift is per second, counted from the block's origin. */
@@ -25,6 +27,8 @@ export interface Projector {
   slopes(model: Float64Array, slopes: readonly (Float64Array | undefined)[], out: Float64Array): void;
   /** Columns of the weighted linear terms beside `model`: scale, offset, drift as far as free; SI per second for drift. */
   columns(model: Float64Array): Float64Array[];
+  /** Takes the block's rows of a weighted list apart in place, where its errors hang together by declaration. */
+  apart(all: Float64Array): void;
 }
 
 /** @param weight  of each observation of the whole list, 1/SI; those of the block are read and kept by reference */
@@ -32,11 +36,20 @@ export function projectorFor(block: Block, weight: Float64Array): Projector {
   const { time, measured, from, origin, span, declared } = block;
   const n = time.length;
   const free = declared.scale === "free";
+  const chain = block.hangsTogether ? chainOf(block) : undefined;
+  const rows = chain && Array.from(chain.rows, (i) => i - from);
+  const phi = chain && links(chain, block.hangsTogether ?? 0);
+  /** Errors that hang together by declaration are taken apart: generalised least squares. */
+  const apart = (values: Float64Array): Float64Array => {
+    if (rows && phi) whiten(rows, phi, values);
+    return values;
+  };
   const fixed: Float64Array[] = [];
-  if (declared.baseline !== "none") fixed.push(column(n, (i) => weight[from + i]));
-  if (declared.baseline === "drift") fixed.push(column(n, (i) => (weight[from + i] * (time[i] - origin)) / span));
+  if (declared.baseline !== "none") fixed.push(apart(column(n, (i) => weight[from + i])));
+  if (declared.baseline === "drift")
+    fixed.push(apart(column(n, (i) => (weight[from + i] * (time[i] - origin)) / span)));
   const basis = orthonormal(fixed);
-  const target = column(n, (i) => weight[from + i] * measured[i]);
+  const target = apart(column(n, (i) => weight[from + i] * measured[i]));
   const targetLeft = Float64Array.from(target);
   removeTwice(targetLeft, basis);
   const curve = new Float64Array(n);
@@ -44,6 +57,7 @@ export function projectorFor(block: Block, weight: Float64Array): Projector {
   const project = (model: Float64Array, out: Float64Array): LinearTerms => {
     let scale = 1;
     for (let i = 0; i < n; i++) curve[i] = weight[from + i] * model[i];
+    apart(curve);
     removeTwice(curve, basis);
     if (free) {
       const norm = dot(curve, curve);
@@ -56,7 +70,9 @@ export function projectorFor(block: Block, weight: Float64Array): Projector {
   // Offset and drift follow from what the residual leaves of the data: fixed . coefficients = target - scale curve - residual.
   const baselineOf = (model: Float64Array, scale: number, out: Float64Array): { offset: number; drift: number } => {
     if (fixed.length === 0) return { offset: 0, drift: 0 };
-    for (let i = 0; i < n; i++) curve[i] = target[i] - scale * weight[from + i] * model[i] - out[from + i];
+    for (let i = 0; i < n; i++) curve[i] = weight[from + i] * model[i];
+    apart(curve);
+    for (let i = 0; i < n; i++) curve[i] = target[i] - scale * curve[i] - out[from + i];
     const second = basis.length > 1 ? dot(basis[1], curve) / dot(basis[1], fixed[1]) : 0;
     const first =
       (dot(basis[0], curve) - (second === 0 ? 0 : second * dot(basis[0], fixed[1]))) / dot(basis[0], fixed[0]);
@@ -65,7 +81,7 @@ export function projectorFor(block: Block, weight: Float64Array): Projector {
 
   const columns = (model: Float64Array): Float64Array[] => {
     const list = fixed.map((c, k) => (k === 1 ? c.map((x) => x * span) : c));
-    return free ? [column(n, (i) => weight[from + i] * model[i]), ...list] : list;
+    return free ? [apart(column(n, (i) => weight[from + i] * model[i])), ...list] : list;
   };
   const moved = new Float64Array(n);
   const slopes = (model: Float64Array, of: readonly (Float64Array | undefined)[], out: Float64Array): void => {
@@ -73,6 +89,7 @@ export function projectorFor(block: Block, weight: Float64Array): Projector {
     let norm = 0;
     if (free) {
       for (let i = 0; i < n; i++) curve[i] = weight[from + i] * model[i];
+      apart(curve);
       removeTwice(curve, basis);
       norm = dot(curve, curve);
       scale = norm > 0 ? dot(curve, targetLeft) / norm : 0;
@@ -81,13 +98,17 @@ export function projectorFor(block: Block, weight: Float64Array): Projector {
       const slope = of[j];
       if (!slope) continue;
       for (let i = 0; i < n; i++) moved[i] = weight[from + i] * slope[i];
+      apart(moved);
       removeTwice(moved, basis);
       // d(y - s c) = -s dc - ds c, s = c.y / c.c
       const grows = norm > 0 ? (dot(moved, targetLeft) - 2 * scale * dot(curve, moved)) / norm : 0;
       for (let i = 0; i < n; i++) out[(from + i) * of.length + j] = -scale * moved[i] - (free ? grows * curve[i] : 0);
     }
   };
-  return { terms: fixed.length + (free ? 1 : 0), project, slopes, columns };
+  const apartOfAll = (all: Float64Array): void => {
+    if (chain && phi) whiten(chain.rows, phi, all);
+  };
+  return { terms: fixed.length + (free ? 1 : 0), project, slopes, columns, apart: apartOfAll };
 }
 
 const column = (n: number, at: (i: number) => number): Float64Array =>

@@ -20,6 +20,8 @@ export interface Block {
   readonly censored: Int8Array | undefined;
   /** Of censored points in a problem that counts them: share of the information of a seen one. */
   readonly information?: Float64Array;
+  /** Correlation time of errors that hang together by declaration, s; undefined where they do not. */
+  readonly hangsTogether?: number;
   /** Readings of one dimension share a group, and with it one unknown variance. */
   readonly group: number;
   /** Unit of the group (that of its first reading): residuals are counted in it. */
@@ -49,7 +51,9 @@ export function blocksOf(trials: readonly Trial[]): Block[] {
       seen.set(plain, count);
       const key = count === 1 ? plain : `${plain} (${count})`;
       const span = points.time.reduce((most, x) => Math.max(most, Math.abs(x - origin)), 0) || 1;
+      const { correlated } = declared;
       blocks.push({
+        ...(typeof correlated === "object" ? { hangsTogether: correlated.time } : {}),
         trial: t,
         reading: r,
         key,

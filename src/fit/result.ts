@@ -17,6 +17,9 @@ export interface Fit {
   /** Free parameters and linear terms. */
   readonly freeParameters: number;
   readonly aicc: number;
+  /** Of the same values with errors that hang together, where the residuals do. */
+  readonly aiccCorrelated?: number;
+  /** With the effective number of readings where residuals hang together. */
   readonly bic: number;
   /** Of the free parameters, linear theory; NaN where not estimable. */
   readonly correlation: Matrix;
@@ -75,6 +78,8 @@ export interface Nuisance {
   readonly offset?: Estimate;
   readonly drift?: Estimate;
   readonly scale?: Estimate;
+  /** How long errors hang together, where the reading asks for a fitted time. */
+  readonly correlation?: Estimate;
 }
 
 export interface Matrix {

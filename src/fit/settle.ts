@@ -1,3 +1,8 @@
+import { correlationTimes } from "../numerics/autoregression.js";
+import { chainOf } from "./autocorrelation.js";
+import { orthonormalBasis } from "./basis.js";
+import { fullJacobian } from "./jacobian.js";
+import type { Block } from "./observations.js";
 import { type Evaluation, type Prior, type Problem, problemWith } from "./problem.js";
 import { descend, fully, type Optimum, type Watch } from "./search.js";
 import type { Setup } from "./setup.js";
@@ -30,10 +35,12 @@ export function settle(
   if (!withPriors && !first.moving) return settled;
   let x = Float64Array.from({ length: found.x.length + setup.held.length }, (_, j) => found.x[j] ?? 0);
   let pull = 0;
+  let linked = setup;
   for (let round = 0; round < 20; round++) {
     const { problem: before, at: old } = settled;
-    const weights = first.moving ? weightsFor(setup, { ...old, before: before.weight }) : first;
-    const own = weights.blocks ? { ...setup, blocks: weights.blocks } : setup;
+    if (round < timed) linked = hangingBlocks(linked, before, x, old);
+    const weights = first.moving ? weightsFor(linked, { ...old, before: before.weight }) : first;
+    const own = weights.blocks ? { ...linked, blocks: weights.blocks } : linked;
     const spread = spreadOf(problemWith(own, weights.weight, priorsOf(own, 1)), x, pull);
     const next = problemWith(own, weights.weight, priorsOf(own, spread));
     const end = descend(next, x, fully, watch);
@@ -42,11 +49,37 @@ export function settle(
     const moved = end.x.reduce((most, v, j) => Math.max(most, Math.abs(v - x[j])), 0);
     x = Float64Array.from(end.x);
     pull = (here.ofAll - here.ofData) / spread ** 2;
-    const still = round > 0 && moved < 1e-8;
+    const still = round > 0 && moved < 1e-8 && (round >= timed || linked === setup);
     settled = { problem: next, weights, x, at: here, converged: end.converged && (still || round < 19) };
     if (still || watch.cancelled()) return settled;
   }
   return settled;
+}
+
+/** Rounds in which fitted correlation times are found anew: they settle fast, and are known no better than to a hundredth. */
+const timed = 4;
+
+/** The setup with the correlation times of readings that ask for fitted ones, by restricted likelihood about a point. */
+function hangingBlocks(setup: Setup, { weight }: Problem, x: Float64Array, at: Evaluation): Setup {
+  const asks = (b: Block): boolean => b.declared.correlated === "fitted";
+  if (!setup.blocks.some(asks)) return setup;
+  const blocks = setup.blocks.map(
+    ({ hangsTogether, ...b }): Block => (asks(b) || !hangsTogether ? b : { ...b, hangsTogether }),
+  );
+  const plain = problemWith({ ...setup, blocks }, weight);
+  const point = x.subarray(0, setup.coordinates.length);
+  const here = plain.evaluate(point) ?? at;
+  const basis = orthonormalBasis(fullJacobian(plain, point, here));
+  const residuals = here.residuals.subarray(0, setup.observations);
+  const found = correlationTimes(
+    residuals,
+    basis,
+    blocks.map((b) => (asks(b) ? chainOf(b) : { rows: [], gaps: new Float64Array(0) })),
+  );
+  return {
+    ...setup,
+    blocks: blocks.map((b, k) => (asks(b) && found[k].time > 0 ? { ...b, hangsTogether: found[k].time } : b)),
+  };
 }
 
 /** Degrees of freedom of a problem: a censored reading counts by its information, the prior of a parameter counts as an observation, a held fact and its prior cancel. */

@@ -1,6 +1,8 @@
 import { countingVariance } from "../data/counting.js";
 import type { Reading } from "../model/trial.js";
 import type { Env } from "../model/value.js";
+import { links } from "../numerics/autoregression.js";
+import { chainOf } from "./autocorrelation.js";
 import { standFor } from "./censored.js";
 import type { Block } from "./observations.js";
 import type { Evaluation } from "./problem.js";
@@ -10,8 +12,9 @@ import type { Setup } from "./setup.js";
 export interface Weights {
   /** 1 / SI per observation. */
   readonly weight: Float64Array;
-  /** Sum of ln sigma^2 of the observations, sigma in the unit of their group: the part of the likelihood that weights carry. */
+  /** Sum of ln sigma^2 of the observations, sigma in the unit of their group, and of what hanging together takes from it: the part of the likelihood that weights carry. */
   readonly logVariances: number;
+  /** Variances and correlation times that were estimated. */
   readonly variances: number;
   /** True where another fit could change them: they depend on the fitted curve or on the residuals. */
   readonly moving: boolean;
@@ -65,14 +68,16 @@ export function weightsFor(setup: Setup, fitted?: Evaluation & { readonly before
       weight[b.from + i] = 1 / sigma;
       logVariances += 2 * Math.log(sigma / b.unit.factor);
     }
+    if (b.hangsTogether) for (const f of links(chainOf(b), b.hangsTogether)) logVariances += Math.log(1 - f * f);
     stands.push(b.censored ? { ...b, measured: values, information } : b);
   }
+  const times = setup.blocks.filter((b) => b.declared.correlated === "fitted").length;
   const unknown = new Set(setup.blocks.filter((b) => !b.declared.noise).map((b) => b.group)).size;
   return {
     weight,
     logVariances,
-    variances: Math.max(1, unknown),
-    moving,
+    variances: Math.max(1, unknown) + times,
+    moving: moving || times > 0,
     inUnit: !spread,
     ...(anyCensored ? { blocks: stands } : {}),
   };

@@ -1,4 +1,4 @@
-import type { Calibration, Reading, Series } from "../model/trial.js";
+import type { Calibration, Correlated, Reading, Series } from "../model/trial.js";
 import type { Report } from "../problems/report.js";
 import type { Files } from "../read/files.js";
 import { child, itemsOf, type MapNode, type Tree, textOf } from "../read/tree.js";
@@ -38,7 +38,9 @@ export function resolveReading(
   const noise = resolveNoise(child(node, "noise"), unit, raw, calibration, report);
   const limits = resolveLimits(child(node, "limits"), unit, calibration, report);
   const leaveOut = resolveLeaveOut(child(node, "leave-out"), table?.series, clock, report);
+  const correlated = resolveCorrelated(child(node, "correlated"), report);
   const right =
+    correlated !== "faulty" &&
     aboveZero("the delay of a sample line", delay, true, report) &&
     aboveZero("the lag of a detector", lag, true, report);
   if (!right || noise === "faulty" || limits === "faulty") return undefined;
@@ -60,9 +62,20 @@ export function resolveReading(
     scale: textOf(node, "scale") === "free" ? "free" : "known",
     line: { delay, lag },
     noise,
+    ...(correlated ? { correlated } : {}),
     leaveOut,
     unit,
   };
+}
+
+/** `correlated:` a word or a time. */
+function resolveCorrelated(node: Tree | undefined, report: Report): Correlated | undefined | "faulty" {
+  if (node?.type !== "scalar") return undefined;
+  const word = node.text;
+  if (word === "no" || word === "fitted") return word;
+  const time = resolveValue(node, dimensions.time, emptyScope, report);
+  if (!time || !aboveZero("a correlation time", time, false, report)) return "faulty";
+  return { time: time.of([]) };
 }
 
 /** What stands for a reading whose file or settings cannot be used, once the reason is reported: the places it draws from. */

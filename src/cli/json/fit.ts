@@ -13,6 +13,7 @@ export function fitJson(fit: Fit, time: Unit, refits?: Bootstrap): Record<string
     observations: fit.observations,
     freeParameters: fit.freeParameters,
     aicc: finite(fit.aicc),
+    ...(fit.aiccCorrelated === undefined ? {} : { aiccCorrelated: finite(fit.aiccCorrelated) }),
     bic: finite(fit.bic),
     correlation: { names: fit.correlation.names, rows: fit.correlation.rows.map((row) => row.map(finite)) },
     converged: fit.converged,
@@ -77,10 +78,11 @@ function profileJson({ unit, value, deviation, interval95, ends }: FittedProfile
   };
 }
 
-const nuisanceJson = ({ offset, drift, scale }: Nuisance): object => ({
+const nuisanceJson = ({ offset, drift, scale, correlation }: Nuisance): object => ({
   ...(offset ? { offset: estimateJson(offset) } : {}),
   ...(drift ? { drift: estimateJson(drift) } : {}),
   ...(scale ? { scale: estimateJson(scale) } : {}),
+  ...(correlation ? { correlation: quantity(correlation.value, correlation.unit) } : {}),
 });
 
 const estimateJson = ({ value, unit, standardError }: Estimate): object => ({

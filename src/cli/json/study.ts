@@ -33,6 +33,7 @@ function rankedJson({ rival, fit, standing, survives, problems }: Ranked): objec
   return {
     ...head,
     aicc: finite(fit.aicc),
+    ...(fit.aiccCorrelated === undefined ? {} : { aiccCorrelated: finite(fit.aiccCorrelated) }),
     difference: finite(standing.difference),
     weight: standing.weight,
     survives,

@@ -72,7 +72,7 @@ function rivalRow(r: Ranked, place: number, result: StudyResult): Rival {
   return {
     network: r.rival.network.title,
     freeParameters: r.fit?.freeParameters ?? 0,
-    aicc: r.fit?.aicc ?? Number.NaN,
+    aicc: r.fit ? r.standing.criterion : Number.NaN,
     weight: r.standing.weight,
     verdict: r.fit && !r.fit.converged ? `${verdict}; its fit did not converge` : verdict,
   };
