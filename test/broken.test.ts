@@ -104,6 +104,7 @@ const shownBy: Record<keyof typeof runEntries, string> = {
   "not-carried": "compile/carried.test.ts",
   "too-many-passes": "simulate/closed.test.ts",
   "loop-too-short": "simulate/ode.test.ts",
+  "trial-of-reaction": "cli/fit-reaction.test.ts",
   "flows-vary": "simulate/logged-flows.test.ts",
   "flows-vary-body": "simulate/logged-flows.test.ts",
   "too-many-cells": "compile/carried.test.ts",

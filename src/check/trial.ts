@@ -10,6 +10,7 @@ import { siUnit } from "../units/describe.js";
 import { type Dimension, dimensions, isRatio, sameDimension } from "../units/dimension.js";
 import { followsKnown } from "./follows.js";
 import { isCell, placeNames } from "./places.js";
+import { checkReacting } from "./reacting-trial.js";
 import { sameKind } from "./same-kind.js";
 
 /**
@@ -18,6 +19,11 @@ import { sameKind } from "./same-kind.js";
  * @param network undefined where none is known: then the units alone are checked
  */
 export function checkTrial(network: Network | undefined, trial: Trial, report: Report): void {
+  if (trial.reacting) {
+    const known = trial.reacting.vessel ?? network;
+    if (known) checkReacting(known, trial, trial.reacting, report);
+    return;
+  }
   if (network) checkPlaces(network, trial, report);
   for (const { level, at } of trial.contents?.levels ?? []) {
     for (const reading of trial.readings) if (!checkLevel(level, at, reading, report)) break;

@@ -1,6 +1,7 @@
 import { checkTrial } from "../check/trial.js";
 import type { Bootstrap } from "../fit/bootstrap.js";
 import { fit } from "../fit/fit.js";
+import { withKinetics } from "../fit/kinetics.js";
 import type { Resampling } from "../fit/resample.js";
 import type { Fit } from "../fit/result.js";
 import { parseNetwork } from "../parse/network.js";
@@ -45,7 +46,7 @@ export async function fitCommand(file: string, options: FitOptions, { inputs, io
   const { report, problems } = collector();
   for (const trial of trials) checkTrial(network, trial, report);
   inputs.accept(problems);
-  if (options.free) requireParameters(network, options.free);
+  if (options.free) requireParameters(withKinetics(network, trials), options.free);
   const progress = progressOn(io);
   const outcome = fit(network, trials, {
     ...(options.free ? { free: options.free } : {}),

@@ -17,6 +17,7 @@ import type { Inputs } from "./inputs.js";
 import { momentsResultJson } from "./json/moments.js";
 import { flowThrough, knownOnDay } from "./known.js";
 import { type Outcome, UsageError } from "./outcome.js";
+import { requireTracer } from "./require-tracer.js";
 import { momentsText } from "./text/moments.js";
 import { curvesOn, type TextCurve } from "./text/plot.js";
 import { blocks } from "./text/table.js";
@@ -31,6 +32,7 @@ export interface MomentsOptions {
 export function moments(file: string, { vessel, output }: MomentsOptions, { inputs, io }: Context): Outcome {
   if (output !== undefined && !/\.csv$/.test(output)) throw new UsageError("-o writes the curves to F.csv");
   const trial = inputs.document(file, parseTrial);
+  requireTracer(trial, "`moments`");
   const network = vesselFor(trial, vessel, inputs);
   const { plant } = network ? compile(network, settingsOfDay(network, trial, {})) : { plant: undefined };
   const result = readMoments(

@@ -9,6 +9,7 @@ import type { Context } from "./context.js";
 import { requireParameters } from "./free.js";
 import { planJson } from "./json/plan.js";
 import { InputError, type Outcome, UsageError } from "./outcome.js";
+import { requireTracer } from "./require-tracer.js";
 import { planText } from "./text/plan.js";
 import { blocks } from "./text/table.js";
 import { oneTime } from "./times.js";
@@ -35,6 +36,7 @@ export function plan(file: string, options: PlanCommandOptions, { inputs, io }: 
   const every = options.every === undefined ? undefined : oneTime(options.every, "--every", '"10 s"');
   const network = inputs.document(file, parseNetwork);
   const declared = inputs.document(options.trial, parseTrial);
+  requireTracer(declared, "`plan`");
   const { report, problems } = collector();
   checkTrial(network, declared, report);
   inputs.accept(problems);

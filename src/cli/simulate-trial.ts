@@ -20,6 +20,7 @@ import { pure, quantity, series } from "./json/quantity.js";
 import { balanceJson, momentsJson } from "./json/tracer.js";
 import { type Outcome, UsageError } from "./outcome.js";
 import { plantAt } from "./plant.js";
+import { requireTracer } from "./require-tracer.js";
 import { settingsFrom } from "./settings.js";
 import type { SimulateOptions } from "./simulate-options.js";
 import { curvesOn } from "./text/plot.js";
@@ -34,6 +35,7 @@ export function simulateTrial(network: Network, options: SimulateOptions, { inpu
   if (options.follows) throw new UsageError("--follows is for --pulse and --step; a trial says itself what it follows");
   if (options.at) throw new UsageError("--at is for --pulse and --step; a trial says itself where it reads");
   const trial = plannedIn(inputs.document(options.trial ?? "", parseTrial), network.basis);
+  requireTracer(trial, "`simulate --trial`");
   const { report, problems } = collector();
   checkTrial(network, trial, report);
   inputs.accept(problems);

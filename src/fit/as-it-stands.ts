@@ -2,7 +2,7 @@ import type { Network } from "../model/network.js";
 import type { Trial } from "../model/trial.js";
 import { collector } from "../problems/report.js";
 import { readingsOf } from "./fit.js";
-import { networkModel } from "./network-model.js";
+import { modelOf } from "./model-of.js";
 import { prepare } from "./prepare.js";
 import { problemWith } from "./problem.js";
 import type { FittedReading } from "./result.js";
@@ -14,7 +14,8 @@ import { weightsFor } from "./weights.js";
  * @returns undefined where the trial has no readings, or the values make no vessel
  */
 export function asItStands(network: Network, trial: Trial): readonly FittedReading[] | undefined {
-  const setup = prepare(networkModel(network), network, [trial], [], collector().report, true);
+  const { model, whole } = modelOf(network, [trial]);
+  const setup = prepare(model, whole, [trial], [], collector().report, true);
   if (!setup) return undefined;
   const problem = problemWith(setup, weightsFor(setup).weight);
   const at = problem.evaluate(new Float64Array(0));

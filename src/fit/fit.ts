@@ -12,11 +12,12 @@ import { criteriaOf } from "./criteria.js";
 import { estimatesOf } from "./estimates.js";
 import { findingsOf } from "./findings.js";
 import type { ForwardModel } from "./forward.js";
-import { networkModel } from "./network-model.js";
+import { modelOf } from "./model-of.js";
 import { countOf, thinned } from "./observations.js";
 import { prepare } from "./prepare.js";
 import { type Problem as LinearProblem, problemWith } from "./problem.js";
 import { notLinear, profilesOf } from "./profiles.js";
+import { cannotFollow } from "./reacting-model.js";
 import type { Fit, FittedParameter, FittedReading, FoundOptimum } from "./result.js";
 import { descend, fully, type SearchResult, searchFrom, type Watch } from "./search.js";
 import { type Settled, settle } from "./settle.js";
@@ -47,15 +48,16 @@ export interface FitOutcome {
 }
 
 /**
- * Estimates the parameters of a network from tracer trials by bounded nonlinear least squares from many starts, linear terms
+ * Estimates the parameters of a network, and of the chemistries that trials name, from all trials at once by bounded nonlinear least squares from many starts, linear terms
  * (scale, offset, drift) taken out by variable projection.
  * Never throws on what a file can hold; deterministic for a given seed.
  */
 export function fit(network: Network, trials: readonly Trial[], options: FitOptions = {}): FitOutcome {
   const { plant } = compile(network);
-  const refused = plant ? untraceable(plant) : [];
+  const refused = [...(plant ? untraceable(plant) : []), ...cannotFollow(network, trials)];
   if (refused.length > 0) return { fit: undefined, problems: refused };
-  return fitWith(networkModel(network), network, trials, options);
+  const { model, whole } = modelOf(network, trials);
+  return fitWith(model, whole, trials, options);
 }
 
 /** The same with any forward model in place of the exact tracer response. */
@@ -95,7 +97,7 @@ export function fitWith(
 
 /** A fit to nothing but constants would be numbers made of nothing. One reading that moves is enough. */
 function anySignal({ blocks }: Setup, report: Report): boolean {
-  if (blocks.some((b) => hasSignal(b.measured))) return true;
+  if (blocks.some((b) => b.declared.of?.steady || hasSignal(b.measured))) return true;
   const [{ key, declared, measured }] = blocks;
   const value = formatQuantity(measured[0], declared.unit, 3);
   report("no-signal-to-fit", declared.where, { key, value, others: blocks.length - 1 });

@@ -13,6 +13,8 @@ export interface Direction {
   readonly dose?: { readonly injection: number; readonly slope: number };
   /** Sample line of a reading, by its index: s. */
   readonly line?: { readonly reading: number; readonly delay: number; readonly lag: number };
+  /** The trial moved by so much, where nothing of the above says how. */
+  readonly changed?: (trial: Trial, by: number) => Trial;
 }
 
 /** Values of names: what is set, and which of that follow their own expressions but for a shift. */

@@ -1,30 +1,12 @@
 import { evaluateNames } from "../compile/evaluate.js";
 import type { Named, Network } from "../model/network.js";
 import type { Injection, Reading, Trial } from "../model/trial.js";
-import type { Env, Value } from "../model/value.js";
-import type { Direction } from "./forward.js";
-import { shifted } from "./settings.js";
+import type { Env } from "../model/value.js";
 
-/** The declared facts of all trials, as a run may move them within their `±`. */
-export interface Facts {
-  readonly trials: Trial[];
-  readonly values: Record<string, number>;
-}
+export type { Facts, Held } from "./held-value.js";
 
-/** A fact with a declared standard deviation: an unknown that its `±` holds near what the file says. */
-export interface Held {
-  readonly says: string;
-  /** Standard deviation, SI. */
-  readonly sd: number;
-  /** Moves the fact by `by` (SI) from what the file says. */
-  move(facts: Facts, by: number): void;
-  /** What that moves in a trial, by its index, per SI; nothing where it moves something in another trial only. */
-  direction(trial: number): Direction | undefined;
-  /** The name that it shifts, where it is one of the network. */
-  readonly name?: string;
-}
-
-const noNames: ReadonlyMap<string, number> = new Map();
+import { heldOfReacting, uncertainKinetics } from "./held-reacting.js";
+import { type Facts, type Held, heldValue } from "./held-value.js";
 
 /** Doses, flows of the day, feed flows, sample lines and parameters that stay at their value, each with a `±`. */
 export function heldFacts(network: Network, trials: readonly Trial[], free: ReadonlySet<string>, env: Env): Held[] {
@@ -46,7 +28,7 @@ export function uncertainConstants(network: Network, trials: readonly Trial[], e
       })),
     ),
   );
-  return [...ofNetwork, ...ofDays];
+  return [...ofNetwork, ...ofDays, ...uncertainKinetics(trials)];
 }
 
 function heldName(network: Network, named: Named, env: Env): Held[] {
@@ -56,23 +38,6 @@ function heldName(network: Network, named: Named, env: Env): Held[] {
   };
   const direction = { names: new Map([[named.name, 1]]) };
   return sd > 0 ? [{ says: named.name, sd, move, direction: () => direction, name: named.name }] : [];
-}
-
-function heldValue(
-  value: Value | undefined,
-  trial: number,
-  says: string,
-  env: Env,
-  moves: Omit<Direction, "names">,
-  change: (trial: Trial, moved: Value) => Trial,
-): Held[] {
-  const sd = value?.sd?.(env) ?? 0;
-  if (!value || !(sd > 0)) return [];
-  const move = (facts: Facts, by: number): void => {
-    facts.trials[trial] = change(facts.trials[trial], shifted(value, by));
-  };
-  const direction = { names: noNames, ...moves };
-  return [{ says, sd, move, direction: (t) => (t === trial ? direction : undefined) }];
 }
 
 function heldOfTrial(trial: Trial, k: number, env: Env): Held[] {
@@ -122,5 +87,5 @@ function heldOfTrial(trial: Trial, k: number, env: Env): Held[] {
       ),
     ];
   });
-  return [...flows, ...doses, ...levels, ...lines];
+  return [...flows, ...doses, ...levels, ...lines, ...heldOfReacting(trial, k, env)];
 }

@@ -113,12 +113,13 @@ function allCurveSlopes(setup: Setup, x: Float64Array, at: Evaluation): (readonl
 function scaled(direction: Direction | undefined, by: number): Direction | undefined {
   if (!direction) return undefined;
   const all = (m: ReadonlyMap<string, number>): Map<string, number> => new Map([...m].map(([k, v]) => [k, by * v]));
-  const { names, day, dose, line } = direction;
+  const { names, day, dose, line, changed } = direction;
   return {
     names: all(names),
     ...(day ? { day: all(day) } : {}),
     ...(dose ? { dose: { ...dose, slope: by * dose.slope } } : {}),
     ...(line ? { line: { ...line, delay: by * line.delay, lag: by * line.lag } } : {}),
+    ...(changed ? { changed: (trial, t) => changed(trial, by * t) } : {}),
   };
 }
 

@@ -9,7 +9,7 @@ import { linearTheory } from "./covariance.js";
 import { hangingTogether } from "./hanging-together.js";
 import type { Facts } from "./held.js";
 import { fullJacobian } from "./jacobian.js";
-import { networkModel } from "./network-model.js";
+import { modelOf } from "./model-of.js";
 import { prepare } from "./prepare.js";
 import { type Prior, problemWith } from "./problem.js";
 import { descend, type Effort, type Watch } from "./search.js";
@@ -48,6 +48,9 @@ export interface RefitOptions {
   readonly seed: number;
 }
 
+/** Points of a reading from which on its residuals are drawn; below, normal errors of the fitted spread stand in. */
+const fewestDrawn = 4;
+
 const refitting: Effort = { tolerance: 1e-8, evaluationsPerUnknown: 40, polish: false, smallest: 1e-6 };
 const unwatched: Watch = { cancelled: () => false, progress: () => {} };
 
@@ -60,7 +63,8 @@ const unwatched: Watch = { cancelled: () => false, progress: () => {} };
  */
 export function refitsOf(network: Network, trials: readonly Trial[], options: RefitOptions): Refits | undefined {
   const { report } = collector();
-  const setup = prepare(networkModel(network), network, trials, options.free, report);
+  const { model, whole } = modelOf(network, trials);
+  const setup = prepare(model, whole, trials, options.free, report);
   if (!setup) return undefined;
   const weights = weightsFor(setup);
   const problem = problemWith(setup, weights.weight);
@@ -154,9 +158,11 @@ class Resampler implements Refits {
     const b = this.settled.problem.setup.blocks[k];
     const phi = this.phi.get(k);
     const places = phi && Array.from(b.time.keys()).filter((i) => !b.censored?.[i]);
-    if (this.resampling === "block") return this.drawn(residuals, this.inflate, draw);
+    // So few residuals do not show how they spread: a single analysis least of all.
+    const few = residuals.length < fewestDrawn;
+    if (this.resampling === "block" && !few) return this.drawn(residuals, this.inflate, draw);
     let errors: Float64Array;
-    if (this.resampling === "parametric") errors = residuals.map(() => this.spread * draw.normal());
+    if (few || this.resampling === "parametric") errors = residuals.map(() => this.spread * draw.normal());
     else if (phi && places) {
       const fresh = Float64Array.from(residuals);
       whiten(places, phi, fresh);

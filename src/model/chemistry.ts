@@ -29,6 +29,15 @@ export interface ChemicalConstant {
   readonly at: Span;
   /** An Arrhenius constant is an expression in `T`. */
   readonly value: Value;
+  /** Of a parameter: what a fit may do with it. */
+  readonly free?: Freedom;
+}
+
+/** How a fit may move a parameter. */
+export interface Freedom {
+  readonly between: readonly [Value, Value] | undefined;
+  readonly spacing: "linear" | "log";
+  readonly about: string | undefined;
 }
 
 export interface Species {

@@ -50,6 +50,8 @@ export interface Named {
   readonly between: readonly [Value, Value] | undefined;
   readonly spacing: "linear" | "log";
   readonly about: string | undefined;
+  /** Of a parameter that a chemistry brings into a fit: its file, and its name there. */
+  readonly chemistry?: { readonly path: string; readonly name: string };
 }
 
 export interface Feed {

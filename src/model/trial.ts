@@ -2,7 +2,11 @@ import type { ClockFormat } from "../read/clock.js";
 import type { Series } from "../read/series.js";
 import type { ScalarNode } from "../read/tree.js";
 import type { Span } from "../text/source.js";
+import type { Dimension } from "../units/dimension.js";
 import type { Unit } from "../units/unit.js";
+import type { Chemistry } from "./chemistry.js";
+import type { DutyFeed } from "./duty.js";
+import type { Network } from "./network.js";
 import type { Value } from "./value.js";
 
 export type { Series } from "../read/series.js";
@@ -28,8 +32,40 @@ export interface Trial {
   readonly contents?: Contents | undefined;
   readonly readings: readonly Reading[];
   readonly tracer?: Tracer | undefined;
+  /** What reacts, where it is no tracer that is followed: then there are no injections. */
+  readonly reacting?: Reacting | undefined;
   /** How the trial's clock is written, for printing its times; undefined where times are elapsed. */
   readonly clock?: ClockFormat | undefined;
+}
+
+/** A trial of a reaction: what is known of the day. Concentrations as the rate laws count them, SI. */
+export interface Reacting {
+  readonly chemistry: Chemistry;
+  readonly at: Span;
+  /** K, everywhere. */
+  readonly temperature: Value | undefined;
+  /** What each feed brings, by feed and species. */
+  readonly feeds: ReadonlyMap<string, DutyFeed>;
+  /** What the vessel holds when its clock begins, by place and species. */
+  readonly contents: ReadonlyMap<string, DutyFeed>;
+  /** s on the trial's clock. */
+  readonly begins: number;
+  /** The dimension in which each species is counted. */
+  readonly concentrations: readonly Dimension[];
+  /** A closed vessel of its own, a flask: the trial is of that, whatever vessel else is fitted. */
+  readonly vessel: Network | undefined;
+  /** Constants of the chemistry moved within their `±`, in standard deviations by name. */
+  readonly shifted?: ReadonlyMap<string, number>;
+}
+
+/** The species that a reading is of. */
+export interface ReadSpecies {
+  /** Its index in the chemistry. */
+  readonly species: number;
+  /** From the unit of the rate laws to that of the reading, SI: a molar mass where one is an amount and the other a mass. */
+  readonly factor: number;
+  /** An analysis of the steady state: its one point has no time. */
+  readonly steady: boolean;
 }
 
 /** Concentrations in the vessel when it starts, s on the trial's clock. */
@@ -115,6 +151,8 @@ export interface Reading {
   }[];
   /** The unit of value for people, after calibration. */
   readonly unit: Unit;
+  /** In a trial of a reaction. */
+  readonly of?: ReadSpecies;
 }
 
 export type Correlated = "no" | "fitted" | { readonly time: number };

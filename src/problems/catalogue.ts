@@ -4,6 +4,7 @@ import { detectorEntries } from "./catalogue/detectors.js";
 import { flowEntries } from "./catalogue/flows.js";
 import { libraryEntries } from "./catalogue/library.js";
 import { nameEntries } from "./catalogue/names.js";
+import { reactingTrialEntries } from "./catalogue/reacting-trials.js";
 import { reuseEntries } from "./catalogue/reuse.js";
 import { runEntries } from "./catalogue/runs.js";
 import { shapeEntries } from "./catalogue/shape.js";
@@ -25,6 +26,7 @@ export const catalogueGroups = {
   "Trials and their tables": dataEntries,
   Detectors: detectorEntries,
   "Trials and the vessel that was tested": vesselTrialEntries,
+  "Trials of a reaction": reactingTrialEntries,
   "Chemistries and duties": chemistryEntries,
   "Fits: before they run, and what to know of their results": runEntries,
   Studies: studyEntries,
@@ -43,6 +45,7 @@ export const catalogue = {
   ...dataEntries,
   ...detectorEntries,
   ...vesselTrialEntries,
+  ...reactingTrialEntries,
   ...chemistryEntries,
   ...runEntries,
   ...studyEntries,

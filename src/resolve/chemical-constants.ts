@@ -1,15 +1,17 @@
 import type { Expression } from "../expressions/ast.js";
 import { knownConstants, namesIn } from "../expressions/ast.js";
 import { call, difference, number, product, quotient } from "../expressions/build.js";
-import type { ChemicalConstant } from "../model/chemistry.js";
+import type { ChemicalConstant, Freedom } from "../model/chemistry.js";
 import type { Env, Value } from "../model/value.js";
 import type { Report } from "../problems/report.js";
 import { collector } from "../problems/report.js";
-import { child, type Entry, entriesOf, type Tree } from "../read/tree.js";
+import { child, type Entry, entriesOf, type Tree, textOf } from "../read/tree.js";
 import { type Dimension, dimensions } from "../units/dimension.js";
+import { formatQuantity } from "../units/format.js";
+import { one } from "../units/unit.js";
 import { checkName } from "./check-name.js";
 import { dependencyOrder } from "./dependency-order.js";
-import { resolveTemperature, resolveValue, type Scope, writtenValue } from "./value.js";
+import { emptyScope, resolveTemperature, resolveValue, type Scope, writtenValue } from "./value.js";
 
 /** R, J/(mol K). */
 const gasConstant = knownConstants.get("gas-constant")?.value ?? Number.NaN;
@@ -25,18 +27,24 @@ export interface ChemicalConstants {
 }
 
 /**
- * The constants of a chemistry; they may use one another in any order, and `T`.
- * @param firstSlot slot of the first constant in an Env; the temperature comes after the last
+ * The constants and parameters of a chemistry; they may use one another in any order, and `T`.
+ * @param firstSlot slot of the first constant in an Env; parameters come after the constants, then the temperature
  * @param taken names that species have
  */
 export function resolveConstants(
-  node: Tree | undefined,
+  { constants: node, parameters: freeNode }: { constants: Tree | undefined; parameters: Tree | undefined },
   firstSlot: number,
   taken: ReadonlySet<string>,
   report: Report,
 ): ChemicalConstants {
-  const written = entriesOf(node);
-  const entries = written.filter((e) => nameIsFree(e, taken, report));
+  const free = entriesOf(freeNode);
+  const written = [...entriesOf(node), ...free];
+  const byConstants = new Set(entriesOf(node).map((e) => e.key.text));
+  const entries = written.filter(
+    (e) =>
+      nameIsFree(e, taken, "a species", report) &&
+      (!free.includes(e) || nameIsFree(e, byConstants, "a constant", report)),
+  );
   const index = new Map(entries.map((e, i) => [e.key.text, i]));
   const temperatureSlot = firstSlot + entries.length;
   const found = new Map<string, Dimension>();
@@ -61,20 +69,51 @@ export function resolveConstants(
     order.push(i);
   }
   const whole = order.length === written.length;
-  const constants = entries.flatMap(({ key }, i) => {
-    const value = values[i];
-    return value ? [{ name: key.text, at: key.at, value }] : [];
+  const constants = entries.flatMap((entry, i): ChemicalConstant[] => {
+    const [value, { key }] = [values[i], entry];
+    if (!value) return [];
+    const freedom = free.includes(entry) ? freedomOf(entry, value, report) : undefined;
+    return [{ name: key.text, at: key.at, value, ...(freedom ? { free: freedom } : {}) }];
   });
   return { constants, order: whole ? order : [], dimensions: found, whole };
 }
 
 const at = (i: number | undefined, shift: number): number | undefined => (i === undefined ? undefined : i + shift);
 
-function nameIsFree({ key }: Entry, taken: ReadonlySet<string>, report: Report): boolean {
+function nameIsFree({ key }: Entry, taken: ReadonlySet<string>, by: string, report: Report): boolean {
   if (!checkName(key, report)) return false;
   if (!taken.has(key.text)) return true;
-  report("name-taken", key.at, { name: key.text, by: "a species" });
+  report("name-taken", key.at, { name: key.text, by });
   return false;
+}
+
+/** What a fit may do with a parameter; bounds are numbers, in order, with the start value between them. */
+function freedomOf({ key, value: node }: Entry, value: Value, report: Report): Freedom {
+  const spacing = textOf(node, "spacing") === "log" ? "log" : "linear";
+  const written = child(node, "between");
+  const ends =
+    written?.type === "list"
+      ? written.items.map((item) => resolveValue(item, value.dimension, emptyScope, report))
+      : [];
+  const [low, high] = ends;
+  const between = low && high ? ([low, high] as const) : undefined;
+  if (between && value.uses.length === 0) boundsHold(key.text, value, between, spacing, report);
+  return { between, spacing, about: textOf(node, "about") };
+}
+
+function boundsHold(
+  name: string,
+  value: Value,
+  between: readonly [Value, Value],
+  spacing: Freedom["spacing"],
+  report: Report,
+): void {
+  const [low, high, start] = [...between, value].map((v) => v.of([]));
+  const text = (x: number): string => formatQuantity(x, value.unit ?? one);
+  const said = { name, low: text(low), high: text(high) };
+  if (!(low < high)) report("bounds-reversed", between[0].at, said);
+  else if (start < low || start > high) report("start-outside-bounds", value.at, { ...said, value: text(start) });
+  else if (spacing === "log" && low <= 0) report("log-bounds", between[0].at, { name });
 }
 
 /** Names that a constant is made of; its own problems are told when it is resolved. */

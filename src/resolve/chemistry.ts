@@ -24,9 +24,10 @@ export function resolveChemistry(tree: MapNode, path: string, report: Report): C
   const declared = entriesOf(child(tree, "species"));
   const species = resolveSpecies(child(tree, "species"), report);
   const names = declared.map((e) => e.key.text);
-  const constants = resolveConstants(child(tree, "constants"), names.length, new Set(names), report);
+  const named = { constants: child(tree, "constants"), parameters: child(tree, "parameters") };
+  const constants = resolveConstants(named, names.length, new Set(names), report);
   const scope = scopeOf(names, constants);
-  const declaredConstants = entriesOf(child(tree, "constants")).map((e) => e.key.text);
+  const declaredConstants = Object.values(named).flatMap((node) => entriesOf(node).map((e) => e.key.text));
   const nodes = itemsOf(child(tree, "reactions"));
   const written = nodes.flatMap((node) => {
     const one = resolveReaction(node, names, declaredConstants, scope, report);
@@ -131,5 +132,6 @@ function unusedNames(
   ];
   const used = new Set(named);
   for (const { name, at } of species) if (!used.has(name)) report("unused-name", at, { name, role: "species" });
-  for (const { name, at } of constants) if (!used.has(name)) report("unused-name", at, { name, role: "constant" });
+  for (const { name, at, free } of constants)
+    if (!used.has(name)) report("unused-name", at, { name, role: free ? "parameter" : "constant" });
 }

@@ -121,7 +121,13 @@ function resolveLocal(
   return new Map(places);
 }
 
-function resolveFeeds(node: Tree | undefined, chemistry: Chemistry | undefined, report: Report): Map<string, DutyFeed> {
+/** What feeds bring, or places hold, by species. `where`: how a message speaks of one. */
+export function resolveFeeds(
+  node: Tree | undefined,
+  chemistry: Chemistry | undefined,
+  report: Report,
+  where = "feed",
+): Map<string, DutyFeed> {
   const known = chemistry?.species.map((s) => s.name);
   const isSpecies = ({ key }: Entry): boolean => {
     if (!known || known.includes(key.text)) return true;
@@ -132,7 +138,7 @@ function resolveFeeds(node: Tree | undefined, chemistry: Chemistry | undefined, 
   for (const { key, value } of entriesOf(node)) {
     const entries = entriesOf(value).filter(isSpecies);
     const inner: Tree = value.type === "map" ? { ...value, entries } : value;
-    const what = `in feed '${key.text}', the concentration of`;
+    const what = `in ${where} '${key.text}', the concentration of`;
     feeds.set(key.text, { at: key.at, species: placed(inner, () => concentrationBases, what, true, report) });
   }
   return feeds;

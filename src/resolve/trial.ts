@@ -14,6 +14,7 @@ import type { Unit } from "../units/unit.js";
 import { resolveContents } from "./contents.js";
 import { meanFlow, resolveFlowLog } from "./flow-log.js";
 import { resolveInjection, signalNode } from "./injection.js";
+import { ofSpecies, resolveReacting, resolveSteady, type TrialFiles } from "./reacting.js";
 import { resolveReading, unreadable } from "./reading.js";
 import { aboveZero } from "./sign.js";
 import { resolveTracer } from "./tracer.js";
@@ -26,6 +27,7 @@ import { emptyScope, resolveValue, type Scope, type Wanted } from "./value.js";
  * A trial document with its tables read, all on one clock, in SI.
  * @param tree  a document that has passed the shape check
  * @param path  of the document
+ * @param open  what the trial names besides tables
  * @param scope names that `flows` and `with` may use: the network's, where one is known
  * @returns what can be read; what is wrong is reported and unknown in it, so that the rest is checked all the same
  */
@@ -34,6 +36,7 @@ export function resolveTrial(
   path: string,
   files: Files,
   report: Report,
+  open: TrialFiles = noFiles,
   scope: Scope = emptyScope,
 ): Trial {
   const readingNodes = mapsOf(child(tree, "readings"));
@@ -61,19 +64,32 @@ export function resolveTrial(
   const injections = injectionNodes.map((node, i) =>
     resolveInjection(node, onClock(inletTables[i]), clock, free, files, timed),
   );
-  const contents = resolveContents(child(tree, "contents"), clock, free, report);
+  const vessel = vesselPath(child(tree, "vessel"));
+  const withChemistry = child(tree, "chemistry") !== undefined;
+  const named = vessel === undefined ? undefined : { path: vessel, at: child(tree, "vessel")?.at ?? tree.at };
+  const reacting = resolveReacting(tree, named, clock, open, timed);
+  if (!withChemistry)
+    for (const { key, value } of nested(child(tree, "contents"))) report("needs-chemistry", value, { key });
+  const contents = withChemistry
+    ? undefined
+    : resolveContents(levelsOnly(child(tree, "contents")), clock, free, report);
   const start = injections[0]?.start ?? contents?.begins ?? 0;
   const first = injections[0]?.form;
   const dose = first?.is === "pulse" && !first.amount.unknown ? first.amount : undefined;
   const level = first?.is === "step" && isLevel(first.level.dimension) ? first.level : undefined;
   const planned = plannedUnit(dose, level ?? contents?.levels[0]?.level);
-  if (injectionNodes.length === 0 && !child(tree, "contents")) report("nothing-put-in", title?.at ?? tree.at, {});
+  if (injectionNodes.length === 0 && !child(tree, "contents") && !withChemistry)
+    report("nothing-put-in", title?.at ?? tree.at, {});
   const readings = readingNodes.map((node, i) => {
     const missing = child(node, "file") !== undefined && readTables[i] === undefined;
     const own = afterMidnight(onClock(readTables[i]), start, clock);
     const reading = resolveReading(node, own, clock, planned, files, timed);
-    return missing || !reading ? unreadable(node) : reading;
+    if (missing || !reading) return unreadable(node);
+    if (!withChemistry && child(node, "of")) report("needs-chemistry", child(node, "of")?.at ?? node.at, { key: "of" });
+    return ofSpecies(reading, node, reacting, report);
   });
+  const steady = resolveSteady(child(tree, "steady"), reacting, report);
+  if (readingNodes.length === 0 && !child(tree, "steady")) report("nothing-read", title?.at ?? tree.at, {});
   const flows = values(child(tree, "flows"), [dimensions.flow, dimensions["mass rate"]], scope, report);
   for (const flow of flows.values()) if (flow.uses.length === 0) aboveZero("the flow of a feed", flow, true, report);
   const flowLogs = new Map<string, Series>();
@@ -94,7 +110,7 @@ export function resolveTrial(
     title: textOf(tree, "trial") ?? "",
     at: title?.at ?? tree.at,
     path,
-    vessel: vesselPath(child(tree, "vessel")),
+    vessel,
     vesselAt: child(tree, "vessel")?.at,
     flows,
     ...(flowLogs.size > 0 ? { flowLogs } : {}),
@@ -102,11 +118,23 @@ export function resolveTrial(
     ...(late.size > 0 ? { late } : {}),
     injections: injections.filter((part) => part !== undefined),
     ...(contents ? { contents } : {}),
-    readings,
+    readings: [...readings, ...steady],
+    ...(reacting ? { reacting } : {}),
     ...(tracer ? { tracer } : {}),
     ...(clock.format ? { clock: clock.format } : {}),
   };
 }
+
+/** No file can be reached. */
+const noFiles: TrialFiles = { chemistry: () => undefined, flask: () => undefined };
+
+/** A map without what holds maps. */
+const levelsOnly = (node: Tree | undefined): Tree | undefined =>
+  node?.type === "map" ? { ...node, entries: node.entries.filter(({ value }) => value.type !== "map") } : node;
+
+/** Keys of a map that hold maps. */
+const nested = (node: Tree | undefined): { key: string; value: Span }[] =>
+  entriesOf(node).flatMap(({ key, value }) => (value.type === "map" ? [{ key: key.text, value: value.at }] : []));
 
 /** Relative to the file in which it is written, which may be the base of a variant. */
 const vesselPath = (node: Tree | undefined): string | undefined =>

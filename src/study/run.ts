@@ -39,7 +39,8 @@ export function runStudy(study: Study, options: StudyOptions = {}): StudyResult 
   const cancelled = options.cancelled ?? (() => false);
   const tell = options.progress ?? (() => {});
   const count = Math.max(fewestDraws, options.draws ?? 200);
-  const readings = study.trials.map((trial) => ({ trial, moments: readMoments(trial, momentsFacts(study, trial)) }));
+  const tracers = study.trials.filter((trial) => !trial.reacting);
+  const readings = tracers.map((trial) => ({ trial, moments: readMoments(trial, momentsFacts(study, trial)) }));
   const fitted = study.rivals.map((rival, i): Omit<Ranked, "standing" | "survives"> => {
     tell({ stage: "fitting", what: rival.network.title, done: (0.8 * i) / study.rivals.length });
     return fitRival(study, rival, options, cancelled);

@@ -156,6 +156,11 @@ export const dataEntries = {
       `'${file}' has elapsed times, '${clock}' times written as ${format}: nothing says how the two clocks fit`,
     fix: "log all readings of a trial on one clock, or make two trials",
   }),
+  "nothing-read": entry<Record<string, never>>({
+    severity: "error",
+    says: () => "the trial says nothing of what was read",
+    fix: "add `readings:`, each with its place and its table, or, in a trial with a `chemistry:`, `steady:` analyses",
+  }),
   "nothing-put-in": entry<Record<never, never>>({
     severity: "error",
     says: () => "the trial puts no tracer in",

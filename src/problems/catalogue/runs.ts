@@ -12,6 +12,12 @@ export const runEntries = {
         : "leave the choice of the engine to the tool, or ask for `--engine laplace` or `--engine ode`",
     example: { name: "core", is: "axial dispersion", engine: "exact" },
   }),
+  "trial-of-reaction": entry({
+    severity: "error",
+    says: (d: { title: string; what: string }) => `${d.what} is of tracers, and '${d.title}' is a trial of a reaction`,
+    fix: "give it a trial with an `injection:`; a trial with a `chemistry:` is read by `fit` and `study`",
+    example: { title: "Flask at 25 degC", what: "`moments`" },
+  }),
   "flows-vary": entry({
     severity: "error",
     says: (d: { engine: string; feed: string }) =>

@@ -1,5 +1,5 @@
 import type { KeyShape, Shape } from "../shape.js";
-import { either, heading, later, list, name, named, oneOrMore, quantity, record, text } from "./common.js";
+import { choice, either, heading, later, list, name, named, oneOrMore, quantity, record, text } from "./common.js";
 
 const species: KeyShape = {
   says: "What reacts, by name. In a rate law the name stands for the concentration at that place and time; capitals are fine. `{}` where there is nothing to say of it.",
@@ -18,7 +18,7 @@ const species: KeyShape = {
 };
 
 const constants: KeyShape = {
-  says: "Constants of the rate laws: a value in any unit that makes the rate a concentration per time, or a value at a temperature with an activation energy. They may use one another, and `T`.",
+  says: "Constants of the rate laws: a value in any unit that makes the rate a concentration per time, or a value at a temperature with an activation energy. They may use one another, parameters, and `T`.",
   example: "{k1: {at: 298.15 K, value: 2 L/mol/min, activation: 45 kJ/mol}, k2: 0.5 1/min}",
   shape: named(
     either(
@@ -43,6 +43,33 @@ const constants: KeyShape = {
         about: { shape: text, says: "What it means, and where it comes from." },
       }),
     ),
+  ),
+};
+
+const parameters: KeyShape = {
+  says: "Constants that a fit may move, by name; everything else uses `value`. A rate law uses them as it uses constants. A fit takes them from trials that carry this chemistry (`chemistry:` in the trial), together with the parameters of the vessel.",
+  example: "{k1: {value: 2 L/mol/min, between: [0.02 L/mol/min, 200 L/mol/min], spacing: log}}",
+  shape: named(
+    record({
+      value: {
+        shape: quantity(),
+        says: "The value where nothing fits it, and one start of a fit. A `±` is a prior of the fit: it holds the value near what is said.",
+        required: true,
+        example: "2 L/mol/min",
+      },
+      between: {
+        shape: list(quantity(), 2),
+        says: "The lowest and the highest value that a fit may try, the lower first: numbers.",
+        example: "[0.02 L/mol/min, 200 L/mol/min]",
+        snippet: "[0.02 L/mol/min, 200 L/mol/min]",
+      },
+      spacing: {
+        shape: choice("linear", "log"),
+        says: "How starts are spread between the bounds: `log` for what may differ by powers of ten.",
+        default: "linear",
+      },
+      about: { shape: text, says: "What it means, for tables and reports." },
+    }),
   ),
 };
 
@@ -81,6 +108,7 @@ export const chemistryShape = record({
   ...heading("chemistry", "What reacts.", "Consecutive hydrolysis"),
   species,
   constants,
+  parameters,
   reactions: {
     shape: list(reaction),
     says: "The reactions, each with its rate law.",

@@ -24,6 +24,11 @@ const reading: Shape = record({
     required: true,
     example: "product",
   },
+  of: {
+    shape: name,
+    says: "In a trial with a `chemistry`: the species that is read there.",
+    example: "A",
+  },
   ...cleaning,
   scale: {
     shape: choice("known", "free"),
@@ -157,7 +162,26 @@ const injection: Shape = record(
   ["pulse", "step", "signal"],
 );
 
-/** One tracer test as declared. */
+const analysis: Shape = record({
+  at: {
+    shape: name,
+    says: "Where it was drawn: an outlet or a compartment, always of what flows out of it.",
+    required: true,
+    example: "product",
+  },
+  of: { shape: name, says: "The species.", required: true, example: "A" },
+  value: {
+    shape: quantity("molar concentration", "mass concentration", "number concentration"),
+    says: "The concentration found, with the `±` of the analysis, one standard deviation: a fit weighs it by that.",
+    required: true,
+    example: "0.12 mol/L ± 0.01 mol/L",
+    snippet: "0.12 mol/L ± 0.01 mol/L",
+  },
+});
+
+const concentrations: Shape = named(quantity("molar concentration", "mass concentration", "number concentration"));
+
+/** One test as declared, of a tracer or of a reaction. */
 export const trialShape = record({
   ...heading("trial", "What was tested, and under which conditions.", "Salt pulse, normal flow"),
   vessel: {
@@ -182,8 +206,7 @@ export const trialShape = record({
   },
   readings: {
     shape: list(reading),
-    says: "Every probe or set of samples, each with its table. Without a `file` it is a draft: nothing can be fitted to it.",
-    required: true,
+    says: "Every probe or set of samples, each with its table. Without a `file` it is a draft: nothing can be fitted to it. Only a trial with `steady` analyses may be without readings.",
     example: "[{at: product, file: v3-salt.csv, time: {column: t, unit: min}, value: {column: c, unit: g/L}}]",
   },
   tracer: {
@@ -212,9 +235,30 @@ export const trialShape = record({
       },
     }),
   },
+  chemistry: {
+    shape: text,
+    says: "The chemistry that was at work, relative to this file: the trial is then of a reaction, not of a tracer. Its `parameters` are estimated by a `fit` of this trial, together with those of the vessel from tracer trials. Where `vessel` names a closed network (a flask), the trial is of that flask, whatever vessel the command or the study fits.",
+    example: "../../shared/chemistry/hydrolysis.yaml",
+  },
+  temperature: {
+    shape: quantity("temperature"),
+    says: "With a `chemistry`: the temperature everywhere, held through the trial. It must be given where a rate depends on it. A `±` (in K) makes it an unknown of the fit, held by that.",
+    example: "25 degC ± 0.5 K",
+    snippet: "25 degC",
+  },
+  feeds: {
+    says: "With a `chemistry`: what each feed brought, by species. A species that is not named is not there; `{}` is clean liquid. A `±` makes a concentration an unknown of the fit, held by that.",
+    example: "{feed: {A: 1 mol/L ± 1 %, B: 1.2 mol/L}}",
+    shape: named(concentrations, "dotted"),
+  },
+  steady: {
+    says: "With a `chemistry`: analyses of a vessel that had settled, each with its `±`.",
+    example: "[{at: product, of: A, value: 0.12 mol/L ± 0.01 mol/L}]",
+    shape: list(analysis),
+  },
   contents: {
-    says: "Tracer in the vessel at the start, which is time zero (the first row, on a clock): concentrations by compartment, part or member (`chain.2`), evenly spread in each; `all` is what no other name covers. What is not named starts clean. Before the start nothing moves.",
+    says: "With a `chemistry`, what the vessel held at the start, species by place: `{flask: {A: 1 mol/L}}`. Of a tracer: tracer in the vessel at the start, which is time zero (the first row, on a clock): concentrations by compartment, part or member (`chain.2`), evenly spread in each; `all` is what no other name covers. What is not named starts clean. Before the start nothing moves.",
     example: "{corner: 2 g/L}",
-    shape: named(quantity(), "dotted"),
+    shape: named(either(quantity(), concentrations), "dotted"),
   },
 });
