@@ -6,11 +6,11 @@ import type { Stage } from "./stage.js";
 import { version } from "./version.js";
 
 /** Commands of the language's contract that this version does not have. */
-const laterCommands = "sweep, language-server".split(", ");
+const laterCommands = "language-server".split(", ");
 
 /** The commands that this version has. */
 export const commandNames: ReadonlySet<string> = new Set([
-  ...["check", "draw", "simulate", "moments", "fit", "study", "plan", "watch"],
+  ...["check", "draw", "simulate", "moments", "fit", "study", "sweep", "plan", "watch"],
   ...libraryCommandNames,
 ]);
 
@@ -36,6 +36,7 @@ export function program(stage: Stage): Command {
   addMoments(root, stage);
   addFit(root, stage);
   addStudy(root, stage);
+  addSweep(root, stage);
   addPlan(root, stage);
   addWatch(root, stage);
   addLibraryCommands(root, stage);
@@ -190,6 +191,40 @@ function addStudy(root: Command, { perform, inputs, io }: Stage): void {
     .option("--starts <n>", "starts of each fit besides the file's own values", whole(0))
     .action((file: string, options) =>
       perform("study", async () => (await import("./study.js")).study(file, options, { inputs, io })),
+    );
+}
+
+function addSweep(root: Command, { perform, inputs, io }: Stage): void {
+  command(
+    root,
+    "sweep <network>",
+    "the figures of a duty over one or two inputs, or the value of an input that meets an aim",
+    [
+      'sweep networks/demo/both.yaml --duty networks/demo/normal.yaml --over "bypass=0 %..20 %:5"',
+      'sweep networks/demo/both.yaml --duty networks/demo/normal.yaml --aim "conversion of ester >= 85 %" --by bypass',
+    ],
+  )
+    .requiredOption("--duty <file>", "the duty whose figures are swept")
+    .option(
+      "--over <range>",
+      'an input, its ends and points: "riser=50 L..400 L:16", " log" for equal ratios; repeatable',
+      collect,
+    )
+    .option("--aim <aim>", 'what a figure shall be: "conversion of A >= 95 %", with =, >= or <=')
+    .option("--by <name>", "with --aim: the input that may move")
+    .option("--between <range>", 'with --aim: where to look (default: its `between:`), such as "500 L..2000 L"')
+    .option("--confidence <share>", 'with --aim: the share of the draws that shall meet it, such as "90 %"')
+    .option("--trial <files...>", "fit to these trials first, and carry what they leave open; repeatable")
+    .option(
+      "--set <name=value>",
+      "another value of a parameter, constant or feed.flow, taken as known; repeatable",
+      collect,
+    )
+    .option("--draws <n>", "draws of what is unsure at each point; 0: middle values alone", whole(0), 100)
+    .option("--seed <n>", "seed of the draws", whole(0), 1)
+    .option("-o, --output <file>", "with --over: the table to F.csv, or the curves to F.svg or F.png")
+    .action((network: string, options) =>
+      perform("sweep", async () => (await import("./sweep.js")).sweepCommand(network, options, { inputs, io })),
     );
 }
 

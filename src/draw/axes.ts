@@ -43,6 +43,24 @@ export function logAxis(values: Iterable<number>, range: readonly [number, numbe
   return { at: (v) => scale(Math.min(to, Math.max(from, v))), domain: [from, to], ticks, log: true };
 }
 
+/** A logarithmic axis from the least to the largest positive value, with ticks at 1, 2 and 5 of each decade. */
+export function logSpan(values: Iterable<number>, range: readonly [number, number]): Axis {
+  const positive = [...values].filter((v) => v > 0 && Number.isFinite(v));
+  const [low, high] = extent(positive);
+  const [from, to] =
+    low === undefined || high === undefined ? [1, 10] : low === high ? [low / 2, low * 2] : [low, high];
+  const scale = scaleLog([from, to], range);
+  const decades: number[] = [];
+  for (let e = Math.floor(Math.log10(from)); e <= Math.ceil(Math.log10(to)); e++) decades.push(10 ** e);
+  const steps = Math.log10(to / from) > 3 ? [1] : [1, 2, 5];
+  const ticks = decades.flatMap((d) => steps.map((s) => Number((d * s).toPrecision(1))));
+  return {
+    at: (v) => scale(Math.max(v, 1e-300)),
+    domain: [from, to],
+    ticks: ticks.filter((t) => t >= from * (1 - 1e-9) && t <= to * (1 + 1e-9)),
+  };
+}
+
 /** The horizontal axis below a plot with its words, such as "time, min". `bare` leaves numbers and words out. */
 export function bottomAxis(axis: Axis, plot: Box, words: string, bare = false): Svg {
   const y = plot.y + plot.height;

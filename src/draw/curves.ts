@@ -1,11 +1,11 @@
 import { line, path } from "../svg/marks.js";
 import { type Box, px, type Svg } from "../svg/svg.js";
 import { formatNumber } from "../units/format.js";
-import { type Axis, bottomAxis, leftAxis, leftRoom, linearAxis, logAxis } from "./axes.js";
+import { type Axis, bottomAxis, leftAxis, leftRoom, linearAxis, logAxis, logSpan } from "./axes.js";
 import { caption, drawCaption } from "./caption.js";
 import { type EndLabel, endLabels, endRoom } from "./line-labels.js";
 import { type PictureOptions, picture } from "./picture.js";
-import { axisData, type Plotted } from "./plotted.js";
+import { axisData, type PlotData, type Plotted } from "./plotted.js";
 import { area, largest, points, trace } from "./traces.js";
 
 /** Lines over one pair of axes, such as E or F of several outlets, or rivals over the same points. */
@@ -15,6 +15,12 @@ export interface Curves {
   readonly x: string;
   readonly y: string;
   readonly lines: readonly CurveLine[];
+  /** Decades along the bottom. */
+  readonly xLog?: boolean;
+  /** The axis need not reach down to nothing: what matters are differences. */
+  readonly free?: boolean;
+  /** A limit or a target. */
+  readonly level?: { readonly at: number; readonly label: string };
   /** Measured points behind the lines. */
   readonly points?: { readonly x: ArrayLike<number>; readonly y: ArrayLike<number>; readonly label?: string };
 }
@@ -28,6 +34,8 @@ export interface CurveLine {
   /** 95 % of what is possible lies here. */
   readonly band?: { readonly low: ArrayLike<number>; readonly high: ArrayLike<number> };
   readonly accent?: boolean;
+  /** Leave the name at its end out: the axis says it. */
+  readonly unnamed?: boolean;
 }
 
 export interface CurvesOptions extends PictureOptions {
@@ -43,41 +51,80 @@ const styles = ["curve", "curve second", "curve third", "curve rest"];
 export const drawCurves = (curves: Curves, options: CurvesOptions = {}): Svg => plotCurves(curves, options).drawing;
 
 /** The same with the numbers behind it. */
-export function plotCurves(curves: Curves, options: CurvesOptions = {}): Plotted {
+export const plotCurves = (curves: Curves, options: CurvesOptions = {}): Plotted =>
+  plotStacked(curves.title, [curves], options);
+
+/** Several plots under one another in one drawing, such as the figures of a duty over the same input. */
+export function plotStacked(title: string, all: readonly Curves[], options: CurvesOptions = {}): Plotted {
   const width = options.width ?? 640;
   const height = options.height ?? 240;
-  const top = options.untitled ? 22 : 54;
+  const parts = options.untitled ? [] : [drawCaption(caption([{ words: title, style: "title" }], 0, 0))];
+  const plots: PlotData[] = [];
+  let top = options.untitled ? 22 : 54;
+  // One left edge for all.
+  const sized = { ...options, width, height };
+  const left = all.length > 1 ? Math.max(...all.map((curves) => panel(curves, sized, 0).data.box.x)) : 0;
+  for (const curves of all) {
+    const made = panel(curves, { ...sized, left }, top);
+    parts.push(...made.parts);
+    plots.push({ ...made.data, label: all.length > 1 ? curves.title : "" });
+    top += height + panelRoom;
+  }
+  const view = { x: -16, y: -12, width: width + 32, height: top - panelRoom + 60 };
+  const says = all.map(inWords).join(" ");
+  return { drawing: picture(title, says, view, options.theme ?? "auto", parts), data: { plots } };
+}
+
+/** Between two plots: the axis of the upper one, the name of the lower. */
+const panelRoom = 66;
+
+/** One plot that begins at so many px from above. */
+function panel(
+  curves: Curves,
+  options: CurvesOptions & { readonly width: number; readonly height: number; readonly left?: number },
+  top: number,
+): { readonly parts: readonly Svg[]; readonly data: PlotData } {
+  const { width, height } = options;
   const yRange = [top + height, top] as const;
   const values = [
-    ...curves.lines.flatMap((l) => [...Array.from(l.y), ...(options.log ? [] : Array.from(l.band?.high ?? []))]),
+    ...curves.lines.flatMap((l) => [
+      ...Array.from(l.y),
+      ...(options.log
+        ? []
+        : [...Array.from(l.band?.high ?? []), ...(curves.free ? Array.from(l.band?.low ?? []) : [])]),
+    ]),
     ...Array.from(curves.points?.y ?? []),
+    ...(curves.level ? [curves.level.at] : []),
   ];
-  const ay = options.log ? logAxis(values, yRange) : linearAxis([...aboveNoise(values), 0], yRange, 5);
-  const left = leftRoom(ay);
-  const plot: Box = { x: left, y: top, width: width - left - endRoom(curves.lines.map((l) => l.label)), height };
+  const ay = options.log
+    ? logAxis(values, yRange)
+    : linearAxis(curves.free ? values : [...aboveNoise(values), 0], yRange, 5);
+  const left = Math.max(options.left ?? 0, leftRoom(ay));
+  const named = curves.lines.filter((l) => !l.unnamed);
+  const plot: Box = { x: left, y: top, width: width - left - endRoom(named.map((l) => l.label)), height };
   const times = [
     ...curves.lines.flatMap((l) => [...Array.from(l.x), ...(l.spikes ?? []).map((s) => s.x)]),
     ...Array.from(curves.points?.x ?? []),
   ];
-  const ax = linearAxis(times, [plot.x, plot.x + plot.width], 7, false);
+  const xRange = [plot.x, plot.x + plot.width] as const;
+  const ax = curves.xLog ? logSpan(times, xRange) : linearAxis(times, xRange, 7, false);
   const floor = options.log ? ay.domain[0] * (1 - 1e-12) : Number.NEGATIVE_INFINITY;
   const measured = curves.points ? points(curves.points.x, curves.points.y, ax, ay, "point", floor).svg : "";
   // the foremost line is drawn last
   const lines = curves.lines.map((l, k) => trace(l.x, l.y, ax, ay, styleOf(l, k), floor)).reverse();
   const parts = [
-    options.untitled ? "" : drawCaption(caption([{ words: curves.title, style: "title" }], 0, 0)),
     leftAxis(ay, plot, curves.y),
     ...curves.lines.map((l) => (l.band ? area(l.x, l.band.low, l.band.high, ax, ay) : "")),
+    curves.level ? levelLine(curves.level, ay, plot) : "",
     measured,
     ...lines,
     ...curves.lines.map((l) => spikes(l, curves.lines.length > 1, ax, plot)),
     bottomAxis(ax, plot, curves.x),
     endLabels(
-      curves.lines.map((l, k) => endOf(l, styleOf(l, k), ax, ay, plot)),
+      curves.lines.flatMap((l, k) => (l.unnamed ? [] : [endOf(l, styleOf(l, k), ax, ay, plot)])),
       plot,
     ).svg,
   ];
-  const view = { x: -16, y: -12, width: width + 32, height: top + height + 60 };
   const { points: p } = curves;
   const series = [
     ...(p ? [{ label: "measured", x: p.x, y: p.y }] : []),
@@ -91,11 +138,17 @@ export function plotCurves(curves: Curves, options: CurvesOptions = {}): Plotted
         : []),
     ]),
   ];
-  const axes = { x: axisData(ax, curves.x), y: axisData(ay, curves.y, options.log) };
-  return {
-    drawing: picture(curves.title, inWords(curves), view, options.theme ?? "auto", parts),
-    data: { plots: [{ label: "", box: plot, ...axes, series }] },
-  };
+  const axes = { x: axisData(ax, curves.x, curves.xLog), y: axisData(ay, curves.y, options.log) };
+  return { parts, data: { label: "", box: plot, ...axes, series } };
+}
+
+/** A limit or target across a plot, with its name above its left end. */
+function levelLine({ at, label }: NonNullable<Curves["level"]>, ay: Axis, plot: Box): Svg {
+  const y = ay.at(at);
+  return (
+    line(plot.x, y, plot.x + plot.width, y, "leader") +
+    drawCaption(caption([{ words: label, style: "look" }], plot.x + 6, y - 4))
+  );
 }
 
 /** Without what lies a little below zero: noise about nothing should not double the axis. */

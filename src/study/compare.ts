@@ -50,7 +50,7 @@ export function changeOutcomes(
     const [old, now] = [operate(today).figures, operate(then).figures];
     if (!old || !now) return [];
     const was = sample.values;
-    const is = sampledFigures(then, rowsFor(changed.network, duty, after, seed));
+    const is = sampledFigures(then, rowsFor(then, after, seed));
     return now.map((f, k): ChangedFigure => {
       const pairs = was.flatMap((w, i) => (w && is[i] ? [[w[k], (is[i] as number[])[k]] as const] : []));
       const differences = pairs.map(([a, b]) => b - a).filter(Number.isFinite);

@@ -11,6 +11,9 @@ export interface RivalDraws {
 
 /** Draws for a network with or without a fit; a set counts where it makes a vessel and keeps every `requires:`. */
 export function drawsOf(network: Network, fit: Fit | undefined, count: number, seed: number): RivalDraws {
-  const possible = (settings: Settings): boolean => compile(network, settings).plant !== undefined;
+  const possible = (settings: Settings): boolean => {
+    const { plant } = compile(network, settings);
+    return plant !== undefined && network.requires.every((r) => r.slack(plant.env) > 0);
+  };
   return { settings: parameterDraws(network, fit, count, seed, possible) };
 }

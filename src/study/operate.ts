@@ -1,8 +1,9 @@
 import { compile } from "../compile/compile.js";
+import { evaluateNames } from "../compile/evaluate.js";
 import type { Plant, Settings } from "../compile/plant.js";
 import type { Duty } from "../model/duty.js";
 import type { Network } from "../model/network.js";
-import { type DutySettings, networkSettings } from "../reaction/conditions.js";
+import { constantsOf, type DutySettings, networkSettings } from "../reaction/conditions.js";
 import { type Figure, figuresOf } from "../reaction/figures.js";
 import { steadyState } from "../reaction/steady.js";
 
@@ -18,9 +19,14 @@ export interface Operation {
 export interface Row {
   readonly vessel: Settings;
   readonly duty: DutySettings;
+  /**
+   * What is made of other names and has a `±` of its own, such as a rate constant that follows the temperature: how many
+   * standard deviations it lies off what these names make of it. One that is in `vessel` or `duty` as well does not count.
+   */
+  readonly off: { readonly vessel: Settings; readonly duty: DutySettings };
 }
 
-export const noRow: Row = { vessel: {}, duty: {} };
+export const noRow: Row = { vessel: {}, duty: {}, off: { vessel: {}, duty: {} } };
 
 /** The reported figures at one point, or in words why there are none. */
 export type Operated =
@@ -32,8 +38,11 @@ export function plantOf(
   { network, duty, values }: Operation,
   row: Row = noRow,
 ): { plant: Plant; cannot?: undefined } | { plant?: undefined; cannot: string } {
-  const { plant, problems } = compile(network, { ...values, ...networkSettings(duty), ...row.vessel });
-  return plant ? { plant } : { cannot: problems[0]?.message ?? "the vessel does not balance" };
+  const settings = { ...values, ...networkSettings(duty), ...row.vessel };
+  const { plant, problems } = compile(network, withOff(network, settings, row));
+  if (!plant) return { cannot: problems[0]?.message ?? "the vessel does not balance" };
+  const broken = network.requires.find((r) => !(r.slack(plant.env) > 0));
+  return broken ? { cannot: `\`requires: ${broken.text}\` does not hold` } : { plant };
 }
 
 /** What the duty reports, values of a row in place of all others. Concentrations and constants do not fall below zero. */
@@ -41,7 +50,7 @@ export function operate(operation: Operation, row: Row = noRow): Operated {
   const made = plantOf(operation, row);
   if (made.plant === undefined) return { cannot: made.cannot };
   const { duty } = operation;
-  const settings = nonNegative(row.duty);
+  const settings = nonNegative({ ...row.duty, ...constantsOff(duty, row) });
   const state = steadyState(made.plant, duty.chemistry, duty, settings);
   if (!state.converged) return { cannot: "the steady state did not converge" };
   return { figures: figuresOf(made.plant, duty, state, settings) };
@@ -50,6 +59,39 @@ export function operate(operation: Operation, row: Row = noRow): Operated {
 /** Values of figures by number; undefined where there are none. */
 export const valuesAt = (operation: Operation, row: Row): number[] | undefined =>
   operate(operation, row).figures?.map((f) => f.value);
+
+/** Values of a network with those that lie off what other names make of them, each after what it depends on. */
+function withOff(network: Network, settings: Settings, row: Row): Settings {
+  const off = network.order.filter((slot) => {
+    const { name } = network.names[slot];
+    return row.off.vessel[name] !== undefined && row.vessel[name] === undefined;
+  });
+  if (off.length === 0) return settings;
+  const whole: Record<string, number> = { ...settings };
+  for (const slot of off) {
+    const { name, value } = network.names[slot];
+    const env = evaluateNames(network, whole);
+    whole[name] = env[slot] + row.off.vessel[name] * (value.sd?.(env) ?? 0);
+  }
+  return whole;
+}
+
+/** The same for constants of the chemistry. */
+function constantsOff(duty: Duty, row: Row): DutySettings {
+  const { chemistry } = duty;
+  if (!chemistry) return {};
+  const n = chemistry.species.length;
+  const found: Record<string, number> = {};
+  for (const k of chemistry.order) {
+    const { name, value } = chemistry.constants[k];
+    const off = row.off.duty[name];
+    if (off === undefined || row.duty[name] !== undefined) continue;
+    const env = new Float64Array(chemistry.temperatureSlot + 1);
+    env.set(constantsOf(chemistry, duty, { ...row.duty, ...found }), n);
+    found[name] = value.of(env) + off * (value.sd?.(env) ?? 0);
+  }
+  return found;
+}
 
 /** However wide their `±`. */
 const nonNegative = (settings: DutySettings): DutySettings =>

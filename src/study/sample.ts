@@ -11,7 +11,7 @@ export interface Sample {
 }
 
 export function sampleOf(operation: Operation, settings: readonly Settings[], seed: number): Sample {
-  const rows = rowsFor(operation.network, operation.duty, settings, seed);
+  const rows = rowsFor(operation, settings, seed);
   return { operation, rows, values: sampledFigures(operation, rows) };
 }
 

@@ -5,7 +5,7 @@ import type { Duty } from "../model/duty.js";
 import type { Network } from "../model/network.js";
 import { dutyInputs, networkSettings } from "../reaction/conditions.js";
 import { type Declared, declaredDraws, declaredNames, fittedNames } from "./draws.js";
-import type { Row } from "./operate.js";
+import type { Operation, Row } from "./operate.js";
 
 /** What is known about where an uncertain input comes from: how to learn more of it follows. */
 export type SourceKind = "fit" | "vessel" | "flow" | "kinetics" | "feed" | "temperature";
@@ -25,12 +25,42 @@ export interface Source {
  * One row of values per draw: what the fit leaves open and what network, duty and chemistry declare with a `±`; the duty's
  * own values come before the network's. Draws of one name are shared by all networks and duties.
  */
-export function rowsFor(network: Network, duty: Duty, settings: readonly Settings[], seed: number): Row[] {
-  const inputs = declaredDraws(onlyDuty(duty), settings.length, seed);
+export function rowsFor({ network, duty, values }: Operation, settings: readonly Settings[], seed: number): Row[] {
+  const env = evaluateNames(network, values);
+  const made = network.names.filter((n) => n.value.uses.length > 0 && n.value.sd && n.role !== "feed-flow");
+  const inputs = onlyDuty(duty);
+  const follows = new Set(
+    (duty.chemistry?.constants ?? [])
+      .filter(({ name, value }) => value.uses.length > 0 && !duty.with.has(name))
+      .map((c) => c.name),
+  );
+  const own = declaredDraws(inputs, settings.length, seed);
+  const sd = new Map(inputs.map((i) => [i.name, i]));
   const days = declaredDraws(declaredFlows(network, duty), settings.length, seed);
   const set = networkSettings(duty);
-  return settings.map((own, i) => ({ vessel: { ...own, ...set, ...days[i] }, duty: inputs[i] }));
+  return settings.map((drawn, i): Row => {
+    const vessel: Record<string, number> = { ...drawn };
+    const offVessel: Record<string, number> = {};
+    for (const { name, slot, value } of made) {
+      if (vessel[name] === undefined || values[name] !== undefined) continue;
+      offVessel[name] = (vessel[name] - env[slot]) / (value.sd?.(env) || 1);
+      delete vessel[name];
+    }
+    const inDuty: Record<string, number> = { ...own[i] };
+    const offDuty: Record<string, number> = {};
+    for (const name of follows) {
+      const known = sd.get(name);
+      if (!known) continue;
+      offDuty[name] = (inDuty[name] - known.value) / known.sd;
+      delete inDuty[name];
+    }
+    return { vessel: { ...vessel, ...set, ...days[i] }, duty: inDuty, off: { vessel: offVessel, duty: offDuty } };
+  });
 }
+
+/** A drawn value of a row as a number to correlate with: as it is, or how far it is off what others make of it. */
+export const drawnValue = ({ off, ...row }: Row, name: string, half: "vessel" | "duty"): number =>
+  row[half][name] ?? off[half][name] ?? Number.NaN;
 
 /** Everything that makes the figures of a duty unsure, in an order of its own. */
 export function sourcesOf(network: Network, fit: Fit | undefined, duty: Duty): Source[] {
@@ -77,5 +107,12 @@ function declaredFlows(network: Network, duty: Duty): Declared[] {
 export function mixedRow(a: Row, b: Row, { vessel, duty }: Source): Row {
   const taken = (from: Settings, names: readonly string[]): Settings =>
     Object.fromEntries(names.flatMap((name) => (name in from ? [[name, from[name]] as const] : [])));
-  return { vessel: { ...a.vessel, ...taken(b.vessel, vessel) }, duty: { ...a.duty, ...taken(b.duty, duty) } };
+  return {
+    vessel: { ...a.vessel, ...taken(b.vessel, vessel) },
+    duty: { ...a.duty, ...taken(b.duty, duty) },
+    off: {
+      vessel: { ...a.off.vessel, ...taken(b.off.vessel, vessel) },
+      duty: { ...a.off.duty, ...taken(b.off.duty, duty) },
+    },
+  };
 }

@@ -5,7 +5,7 @@ import { sobolIndices } from "../numerics/sobol-indices.js";
 import { dutyInputs, networkSettings } from "../reaction/conditions.js";
 import { declaredNames } from "./draws.js";
 import { noRow, type Operation, type Row, valuesAt } from "./operate.js";
-import { mixedRow, type Source, sourcesOf } from "./sources.js";
+import { drawnValue, mixedRow, type Source, sourcesOf } from "./sources.js";
 
 /** An uncertain input, or the fit as a whole, and how much of a figure's variance it holds. */
 export interface Driver extends Source {
@@ -66,7 +66,7 @@ export function spreadsOf(
     if (whole.length < fewestRows || sources.length === 0) return undefined;
     const sd = deviation(whole.map((i) => y[i]));
     if (!(sd > 1e-12 * Math.abs(y[whole[0]]))) return undefined;
-    const column = (name: string, of: "vessel" | "duty"): number[] => whole.map((i) => rows[i][of][name]);
+    const column = (name: string, of: "vessel" | "duty"): number[] => whole.map((i) => drawnValue(rows[i], name, of));
     const regression = additiveShares(
       sources.map((s) => [...s.vessel.map((n) => column(n, "vessel")), ...s.duty.map((n) => column(n, "duty"))]),
       whole.map((i) => y[i]),

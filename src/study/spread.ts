@@ -6,7 +6,8 @@ export function interval95(sample: readonly number[]): readonly [number, number]
   return sorted.length < fewest ? undefined : [quantile(sorted, 0.025), quantile(sorted, 0.975)];
 }
 
-function quantile(sorted: readonly number[], p: number): number {
+/** The p-quantile of an ascending sample, between neighbours by proportion. */
+export function quantile(sorted: readonly number[], p: number): number {
   const at = p * (sorted.length - 1);
   const low = Math.floor(at);
   const high = Math.min(low + 1, sorted.length - 1);

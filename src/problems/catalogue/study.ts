@@ -17,4 +17,10 @@ export const studyEntries = {
     says: ({ path, key }) => `'${path}' stands twice under \`${key}\``,
     fix: "name it once: twice would count it twice",
   }),
+  "bad-aim": entry<{ text: string }>({
+    severity: "error",
+    says: ({ text }) => `'${text}' is no aim`,
+    fix: "write a figure as in `report:`, one of `=`, `>=`, `<=`, and a value: `conversion of A >= 95 %`",
+    example: { text: "95 % conversion" },
+  }),
 } as const;

@@ -1,0 +1,96 @@
+import type { AimResult, Reached } from "../../study/aim.js";
+import type { Sweep } from "../../study/sweep.js";
+import { inUnit, type Unit } from "../../units/unit.js";
+import { finite, type QuantityJson, quantity, series, unitName } from "./quantity.js";
+import { reportedJson } from "./steady.js";
+
+/** A sweep: its inputs, then every point with its figures, or why there are none. Conversion, yield and selectivity are fractions. */
+export function sweepJson({ operation, axes, points, draws, stopped }: Sweep): Record<string, unknown> {
+  return {
+    network: operation.network.title,
+    duty: operation.duty.title,
+    over: axes.map(({ input, values }) => ({ name: input.name, ...series(values, input.unit) })),
+    points: points.map(({ at, figures, cannot, intervals }) => ({
+      at: at.map((v, k) => quantity(v, axes[k].input.unit)),
+      ...(figures
+        ? {
+            figures: figures.map((f, k) => ({
+              name: f.name,
+              ...reportedJson(f),
+              interval95: intervalJson(intervals[k], f.unit),
+            })),
+          }
+        : { figures: null, cannot }),
+    })),
+    draws,
+    ...(stopped ? { stopped: "cancelled" } : {}),
+  };
+}
+
+const intervalJson = (interval: readonly [number, number] | undefined, unit: Unit): (number | null)[] | null =>
+  interval ? interval.map((v) => finite(inUnit(v, unit))) : null;
+
+/** The same as a table; cells of points that cannot be are empty. */
+export function sweepCsv({ operation, axes, points }: Sweep): string {
+  const first = points.find((p) => p.figures)?.figures;
+  const banded = operation.duty.report.map((_, k) => points.some((p) => p.intervals[k]));
+  const header = [
+    ...axes.map(({ input }) => `${input.name} [${unitName(input.unit)}]`),
+    ...operation.duty.report.flatMap(({ text }, k) => {
+      const name = `${text} [${first ? unitName(first[k].unit) : "1"}]`;
+      return banded[k] ? [name, `${name} 2.5 %`, `${name} 97.5 %`] : [name];
+    }),
+    "left out because",
+  ];
+  const number = (v: number | undefined): string => (v === undefined || !Number.isFinite(v) ? "" : String(v));
+  const rows = points.map(({ at, figures, intervals, cannot }) => [
+    ...at.map((v, k) => number(inUnit(v, axes[k].input.unit))),
+    ...operation.duty.report.flatMap((_, k) => {
+      const f = figures?.[k];
+      const cells = [f?.value, ...(banded[k] ? [intervals[k]?.[0], intervals[k]?.[1]] : [])];
+      return cells.map((v) => number(f && v !== undefined ? inUnit(v, f.unit) : undefined));
+    }),
+    cannot ?? "",
+  ]);
+  const cell = (text: string): string => (/[",\n\r]/.test(text) ? `"${text.replace(/"/g, '""')}"` : text);
+  return `${[header, ...rows].map((r) => r.map(cell).join(",")).join("\n")}\n`;
+}
+
+/** What an aim came to. */
+export function aimJson(found: AimResult): Record<string, unknown> {
+  const { aim, range, sign, confidence, crossings, met, best, impossible, draws, stopped } = found;
+  const { unit } = range.input;
+  const stretch = ({ from, to }: { from: number; to: number }): object => ({
+    from: quantity(from, unit),
+    to: quantity(to, unit),
+  });
+  return {
+    aim: { text: aim.text, figure: aim.line.text, sign, target: quantity(aim.target.value, aim.target.unit) },
+    by: { name: range.input.name, ...stretch(range) },
+    confidence: confidence ?? null,
+    reachable: crossings.length > 0 || met.length > 0,
+    crossings: crossings.map((c) => reachedJson(c, unit)),
+    met: met.map(stretch),
+    best: best ? reachedJson(best, unit) : null,
+    impossible: impossible.map((s) => ({ ...stretch(s), why: s.why })),
+    draws,
+    ...(stopped ? { stopped: "cancelled" } : {}),
+  };
+}
+
+const reachedJson = (
+  { at, figure, share, kept }: Reached,
+  unit: Unit,
+): {
+  value: number | null;
+  unit: string;
+  figure: QuantityJson;
+  shareMeeting: number | null;
+  kept?: QuantityJson;
+} => ({
+  value: finite(inUnit(at, unit)),
+  unit: unitName(unit),
+  figure: reportedJson(figure),
+  shareMeeting: share ?? null,
+  ...(kept === undefined ? {} : { kept: quantity(kept, figure.unit) }),
+});

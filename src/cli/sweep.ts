@@ -1,0 +1,86 @@
+import { checkDuty } from "../check/duty.js";
+import { checkTrial } from "../check/trial.js";
+import { uncarried } from "../compile/carried.js";
+import { compile } from "../compile/compile.js";
+import { fit as fitNetwork } from "../fit/fit.js";
+import type { Fit } from "../fit/result.js";
+import type { Network } from "../model/network.js";
+import { parseDuty } from "../parse/duty.js";
+import { parseNetwork } from "../parse/network.js";
+import { parseTrial } from "../parse/trial.js";
+import { collector } from "../problems/report.js";
+import { drawsOf } from "../study/draws-of.js";
+import { inputsOf } from "../study/inputs.js";
+import type { Operation } from "../study/operate.js";
+import { rowsFor, sourcesOf } from "../study/sources.js";
+import { formatNumber } from "../units/format.js";
+import type { Context } from "./context.js";
+import { InputError, type Outcome, UsageError } from "./outcome.js";
+import { plantAt } from "./plant.js";
+import { progressOn } from "./progress.js";
+import { settingsFrom } from "./settings.js";
+import { aimOutcome } from "./sweep-aim.js";
+import type { Asked, SweepOptions } from "./sweep-options.js";
+import { overOutcome } from "./sweep-over.js";
+
+/** `sweep NETWORK --duty F`: the figures of a duty over one or two inputs, or the value of an input that meets an aim. */
+export async function sweepCommand(file: string, options: SweepOptions, context: Context): Promise<Outcome> {
+  if ((options.over === undefined) === (options.aim === undefined)) {
+    throw new UsageError(
+      'say what to sweep: --over "name=500 L..2000 L:16", or --aim "conversion of A = 95 %" --by name',
+    );
+  }
+  if (options.over !== undefined) {
+    for (const key of ["by", "between", "confidence"] as const) {
+      if (options[key] !== undefined) throw new UsageError(`--${key} goes with --aim`);
+    }
+    if (options.over.length > 2) throw new UsageError("--over: one or two inputs; a third makes no picture");
+  } else if (options.output !== undefined) throw new UsageError("-o goes with --over");
+  const asked = ask(file, options, context);
+  return options.over === undefined ? aimOutcome(asked, options, context) : overOutcome(asked, options, context);
+}
+
+function ask(file: string, options: SweepOptions, { inputs, io }: Context): Asked {
+  const network = inputs.document(file, parseNetwork);
+  const duty = inputs.document(options.duty, parseDuty);
+  const { report, problems } = collector();
+  checkDuty(network, duty, report);
+  inputs.accept(problems);
+  const set = settingsFrom(network, options.set);
+  const plant = compile(network, set).plant ?? plantAt(network, set);
+  inputs.accept(uncarried(plant, "reaction"));
+  const fit = options.trial === undefined ? undefined : fitted(network, options.trial, options.seed, { inputs, io });
+  const operation: Operation = { network, duty, values: { ...fit?.values, ...set } };
+  const known = new Set(inputsOf(operation).map((i) => i.name));
+  if (known.size === 0) throw new UsageError("neither network nor duty has an input by name");
+  const sources = options.draws === 0 ? [] : sourcesOf(network, fit, duty);
+  const draws = sources.length === 0 ? [] : drawsOf(network, fit, options.draws, options.seed).settings;
+  // What --set says is known.
+  const rows = rowsFor(operation, draws, options.seed).map((r) => ({ ...r, vessel: { ...r.vessel, ...set } }));
+  return { operation, rows, carries: rows.length === 0 ? "" : carried(fit, sources.length, rows.length) };
+}
+
+function carried(fit: Fit | undefined, sources: number, rows: number): string {
+  const declared = sources - (fit && fit.covariance.names.length > 0 ? 1 : 0);
+  const what = [
+    ...(fit ? ["what the fit leaves open"] : []),
+    ...(declared > 0 ? [declared === 1 ? "the declared ±" : "every declared ±"] : []),
+  ];
+  return `${what.join(" and ")}, ${rows} draws`;
+}
+
+function fitted(network: Network, files: readonly string[], seed: number, { inputs, io }: Context): Fit {
+  const trials = files.map((path) => inputs.document(path, parseTrial));
+  const { report, problems } = collector();
+  for (const trial of trials) checkTrial(network, trial, report);
+  inputs.accept(problems);
+  const progress = progressOn(io);
+  const outcome = fitNetwork(network, trials, {
+    seed,
+    cancelled: io.cancelled,
+    progress: ({ start, starts, best }) => progress.say(`fit: start ${start} of ${starts}, best ${formatNumber(best)}`),
+  });
+  progress.done();
+  if (!outcome.fit) throw new InputError(outcome.problems);
+  return outcome.fit;
+}

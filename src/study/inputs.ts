@@ -1,0 +1,73 @@
+import { evaluateNames } from "../compile/evaluate.js";
+import type { Value } from "../model/value.js";
+import { constantsOf, networkSettings } from "../reaction/conditions.js";
+import { siUnit } from "../units/describe.js";
+import type { Dimension } from "../units/dimension.js";
+import type { Unit } from "../units/unit.js";
+import type { Operation, Row } from "./operate.js";
+
+/** Something that a duty in a network depends on and that can be given another value, by the name that people use. */
+export interface Input {
+  readonly name: string;
+  /** Which half of a `Row` it belongs to. */
+  readonly of: "vessel" | "duty";
+  readonly dimension: Dimension;
+  /** The unit that the file gives it in, else a usual one. */
+  readonly unit: Unit;
+  /** At present, SI. */
+  readonly value: number;
+  /** Declared bounds, SI. */
+  readonly between: readonly [number, number] | undefined;
+  readonly log: boolean;
+}
+
+/**
+ * Every input: constants of the chemistry (`k1`, and `bulk.k1` where it holds there only), what feeds bring (`feed.A`), the
+ * temperature; then parameters and constants of the network and `feed.flow`. A name that both have is the chemistry's, as in `with:`.
+ */
+export function inputsOf(operation: Operation): Input[] {
+  const { network, duty, values } = operation;
+  const env = evaluateNames(network, { ...values, ...networkSettings(duty) });
+  const unitOf = (value: Value): Unit => value.unit ?? network.units.unitFor(value.dimension);
+  const inputs: Input[] = [];
+  const add = (name: string, of: Input["of"], source: Value, value: number, more: Partial<Input> = {}): void => {
+    if (inputs.some((i) => i.name === name)) return;
+    const { dimension } = source;
+    inputs.push({ name, of, dimension, unit: unitOf(source), value, between: undefined, log: false, ...more });
+  };
+  const { chemistry } = duty;
+  if (chemistry) {
+    const numbers = constantsOf(chemistry, duty);
+    chemistry.constants.forEach(({ name, value }, k) => {
+      const written = duty.with.get(name)?.value ?? value;
+      const unit = written.unit ?? value.unit ?? usual(value.dimension);
+      add(name, "duty", value, numbers[k], { unit });
+    });
+  }
+  for (const [place, { constants }] of duty.local ?? []) {
+    for (const [name, { value }] of constants) add(`${place}.${name}`, "duty", value, value.of([]));
+  }
+  for (const [feed, { species }] of duty.feeds) {
+    for (const [name, { value }] of species) add(`${feed}.${name}`, "duty", value, value.of([]));
+  }
+  if (duty.temperature) add("temperature", "duty", duty.temperature, duty.temperature.of([]));
+  for (const { name, slot, role, value, between, spacing } of network.names) {
+    if (role === "inflow") continue;
+    const written = duty.flows.get(name.replace(/\.flow$/, ""))?.value ?? duty.settings.get(name)?.value ?? value;
+    add(name, "vessel", value, env[slot], {
+      unit: written.unit ?? unitOf(value),
+      between: between && [between[0].of(env), between[1].of(env)],
+      log: spacing === "log",
+    });
+  }
+  return inputs;
+}
+
+const usual = (dimension: Dimension): Unit => ({ name: siUnit(dimension), factor: 1, offset: 0, dimension });
+
+/** A row with some inputs at other values. SI. */
+export function rowWith(row: Row, inputs: readonly Input[], values: readonly number[]): Row {
+  const of = (half: Input["of"]): Record<string, number> =>
+    Object.fromEntries(inputs.flatMap((input, k) => (input.of === half ? [[input.name, values[k]] as const] : [])));
+  return { ...row, vessel: { ...row.vessel, ...of("vessel") }, duty: { ...row.duty, ...of("duty") } };
+}

@@ -1,0 +1,70 @@
+import type { Figure } from "../reaction/figures.js";
+import { type Input, rowWith } from "./inputs.js";
+import { noRow, type Operation, operate, type Row, valuesAt } from "./operate.js";
+import { interval95 } from "./spread.js";
+
+/** One input of a sweep and its values, SI. */
+export interface Axis {
+  readonly input: Input;
+  readonly values: readonly number[];
+  readonly log: boolean;
+}
+
+export interface SweepPoint {
+  /** One value per axis, SI. */
+  readonly at: readonly number[];
+  /** Undefined where the vessel cannot be: `cannot` says why. */
+  readonly figures: readonly Figure[] | undefined;
+  readonly cannot: string | undefined;
+  /** Per figure, over the draws at this point; undefined where nothing is unsure. */
+  readonly intervals: readonly (readonly [number, number] | undefined)[];
+}
+
+export interface Sweep {
+  readonly operation: Operation;
+  readonly axes: readonly Axis[];
+  /** The last axis runs fastest. */
+  readonly points: readonly SweepPoint[];
+  readonly draws: number;
+  readonly stopped: boolean;
+}
+
+export interface Watch {
+  readonly cancelled?: () => boolean;
+  /** 0 to 1. */
+  readonly progress?: (done: number) => void;
+}
+
+/**
+ * The reported figures of a duty over one or two of its inputs. The same draws serve every point, so that a curve and its
+ * band are as smooth as the vessel; what is swept is taken to be known at each point.
+ * @param rows draws of what is unsure; none: no intervals
+ */
+export function sweep(operation: Operation, axes: readonly Axis[], rows: readonly Row[], watch: Watch = {}): Sweep {
+  const inputs = axes.map((a) => a.input);
+  const places = axes.reduce<number[][]>((all, a) => all.flatMap((at) => a.values.map((v) => [...at, v])), [[]]);
+  const points: SweepPoint[] = [];
+  for (const [k, at] of places.entries()) {
+    if (watch.cancelled?.()) break;
+    watch.progress?.(k / places.length);
+    const here = operate(operation, rowWith(noRow, inputs, at));
+    const drawn = here.figures ? rows.map((row) => valuesAt(operation, rowWith(row, inputs, at))) : [];
+    points.push({
+      at,
+      figures: here.figures,
+      cannot: here.cannot,
+      intervals: (here.figures ?? []).map((_, i) => interval95(drawn.map((v) => v?.[i] ?? Number.NaN))),
+    });
+  }
+  return { operation, axes, points, draws: rows.length, stopped: points.length < places.length };
+}
+
+/** `count` values from one end to the other, both exact; in equal ratios where `log`. */
+export function spaced(from: number, to: number, count: number, log: boolean): number[] {
+  return Array.from({ length: count }, (_, i) => {
+    if (i === 0) return from;
+    if (i === count - 1) return to;
+    const share = i / (count - 1);
+    return log ? from * (to / from) ** share : from + share * (to - from);
+  });
+}
