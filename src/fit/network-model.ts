@@ -7,6 +7,7 @@ import { isClosed, type Network } from "../model/network.js";
 import type { Trial } from "../model/trial.js";
 import type { Value } from "../model/value.js";
 import { RefusedError } from "../problems/refused.js";
+import type { Replay } from "../simulate/replay.js";
 import { trialResponse } from "../simulate/trial.js";
 import { hasSlopes, type Move, trialSlopes } from "../simulate/trial-slopes.js";
 import type { At, Direction, ForwardModel, WantedTimes } from "./forward.js";
@@ -81,17 +82,21 @@ export function networkModel(network: Network): ForwardModel {
   const replays = new Replays(network, plan);
   const noSeeds = new Float64Array(0);
   /** By a recording; undefined where none holds. */
-  const replayed = (trial: Trial, values: Settings, wanted: WantedTimes, directions: readonly Direction[]) => {
+  const ask = <T>(trial: Trial, values: Settings, of: (replay: Replay, inputs: Float64Array) => T | undefined) => {
     for (const replay of replays.of(trial)) {
       const inputs = inputsOf(replay.inputs, values);
-      const seeds = inputs && (directions.length === 0 ? noSeeds : seedsOf(replay.inputs, directions));
-      const answer = inputs && seeds && replay.run(inputs, wanted, seeds, directions.length);
+      const answer = inputs && of(replay, inputs);
       if (!answer) continue;
       replays.served(trial, replay);
       return answer;
     }
     return undefined;
   };
+  const replayed = (trial: Trial, values: Settings, wanted: WantedTimes, directions: readonly Direction[]) =>
+    ask(trial, values, (replay, inputs) => {
+      const seeds = directions.length === 0 ? noSeeds : seedsOf(replay.inputs, directions);
+      return seeds && replay.run(inputs, wanted, seeds, directions.length);
+    });
   const horizonOf = (wanted: WantedTimes): number =>
     wanted.reduce((m, { time }) => Math.max(m, time[time.length - 1] ?? 0), 0);
   return {
@@ -131,6 +136,8 @@ export function networkModel(network: Network): ForwardModel {
       return { curves: response.curves, slopes };
     },
     delays: (trial, values) => {
+      const quick = ask(trial, values, (replay, inputs) => replay.delays(inputs));
+      if (quick) return quick;
       const plant = plantFor(trial, values);
       const tubes = plant?.nodes.filter((n) => n.part === Part.Delay) ?? [];
       return tubes.map((n) => (n.inflow > 0 ? n.volume / n.inflow : Number.POSITIVE_INFINITY));

@@ -17,7 +17,10 @@ export interface LinearTerms {
 export interface Projector {
   /** Number of linear terms. */
   readonly terms: number;
-  /** Writes weighted residuals (measured - fitted) of `model` (SI) to `out` from the block's place on. */
+  /**
+   * Writes weighted residuals (measured - fitted) of `model` (SI) to `out` from the block's place on. Both are looked at again
+   * when the baseline is asked for.
+   */
   project(model: Float64Array, out: Float64Array): LinearTerms;
   /**
    * Derivatives of the residuals of `project` by what moves `model`.
@@ -64,7 +67,21 @@ export function projectorFor(block: Block, weight: Float64Array): Projector {
       scale = norm > 0 ? dot(curve, targetLeft) / norm : 0;
     }
     for (let i = 0; i < n; i++) out[from + i] = targetLeft[i] - scale * curve[i];
-    return { scale, ...baselineOf(model, scale, out) };
+    let baseline: { offset: number; drift: number } | undefined;
+    const found = (): { offset: number; drift: number } => {
+      baseline ??= baselineOf(model, scale, out);
+      return baseline;
+    };
+    // Most points of a search are never asked for theirs.
+    return {
+      scale,
+      get offset() {
+        return found().offset;
+      },
+      get drift() {
+        return found().drift;
+      },
+    };
   };
 
   // Offset and drift follow from what the residual leaves of the data: fixed . coefficients = target - scale curve - residual.
@@ -120,12 +137,17 @@ function dot(a: Float64Array, b: Float64Array): number {
   return sum;
 }
 
+/** v less its parts along the basis; once more where little was left, so that it is orthogonal to rounding. */
 function removeTwice(v: Float64Array, basis: readonly Float64Array[]): void {
-  for (let pass = 0; pass < 2; pass++) {
+  for (let pass = 0; pass < 2 && basis.length > 0; pass++) {
+    const before = pass === 0 ? dot(v, v) : 0;
+    let taken = 0;
     for (const q of basis) {
       const share = dot(q, v);
+      taken += share * share;
       for (let i = 0; i < v.length; i++) v[i] -= share * q[i];
     }
+    if (taken < 0.9 * before) return;
   }
 }
 

@@ -149,7 +149,7 @@ export class Search {
   private point(p: Float64Array): Point | undefined {
     const values = this.evaluate(p);
     if (!values) return undefined;
-    const residuals = Float64Array.from(values);
+    const residuals = values instanceof Float64Array ? values.slice() : Float64Array.from(values);
     return { p, residuals, sum: sumOfSquares(residuals) };
   }
 
@@ -195,6 +195,7 @@ function vector(
 }
 
 function flat(rows: ArrayLike<number> | ArrayLike<ArrayLike<number>>, m: number, n: number): Float64Array {
+  if (rows instanceof Float64Array) return rows;
   if (m === 0 || typeof rows[0] === "number") return Float64Array.from(rows as ArrayLike<number>);
   const jacobian = new Float64Array(m * n);
   for (let i = 0; i < m; i++) jacobian.set(rows[i] as ArrayLike<number>, i * n);

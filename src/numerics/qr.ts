@@ -114,6 +114,9 @@ export function inverseOfNormal(qr: Qr): Float64Array | "singular" {
 
 /** Euclidean length of f[from..to), safe from overflow. */
 function tailNorm(f: Float64Array, from: number, to: number): number {
+  let square = 0;
+  for (let i = from; i < to; i++) square += f[i] * f[i];
+  if (square > 1e-200 && square < 1e200) return Math.sqrt(square);
   let largest = 0;
   for (let i = from; i < to; i++) largest = Math.max(largest, Math.abs(f[i]));
   if (largest === 0 || !Number.isFinite(largest)) return largest;

@@ -57,13 +57,32 @@ function turn(x: Float64Array, length: number, p: number, q: number, c: number, 
 }
 
 function sorted(w: Float64Array, v: Float64Array, m: number, n: number): Svd {
-  const norms = Array.from({ length: n }, (_, j) => Math.hypot(...w.subarray(j * m, (j + 1) * m)));
-  const order = norms.map((_, j) => j).sort((a, b) => norms[b] - norms[a]);
+  const singular = new Float64Array(n);
+  const order = new Int32Array(n);
+  for (let j = 0; j < n; j++) {
+    const norm = lengthOf(w, j * m, (j + 1) * m);
+    let place = j;
+    for (; place > 0 && singular[place - 1] < norm; place--) {
+      singular[place] = singular[place - 1];
+      order[place] = order[place - 1];
+    }
+    singular[place] = norm;
+    order[place] = j;
+  }
   const u = new Float64Array(m * n);
   const vs = new Float64Array(n * n);
-  order.forEach((from, j) => {
-    for (let i = 0; i < m; i++) u[i * n + j] = norms[from] > 0 ? w[from * m + i] / norms[from] : 0;
+  for (let j = 0; j < n; j++) {
+    const from = order[j];
+    const norm = singular[j];
+    for (let i = 0; i < m; i++) u[i * n + j] = norm > 0 ? w[from * m + i] / norm : 0;
     for (let i = 0; i < n; i++) vs[i * n + j] = v[from * n + i];
-  });
-  return { m, n, u, singular: Float64Array.from(order, (j) => norms[j]), v: vs };
+  }
+  return { m, n, u, singular, v: vs };
+}
+
+/** Euclidean length, safe from overflow. */
+function lengthOf(w: Float64Array, from: number, to: number): number {
+  let sum = 0;
+  for (let i = from; i < to; i++) sum += w[i] * w[i];
+  return sum > 1e-200 && sum < 1e200 ? Math.sqrt(sum) : Math.hypot(...w.subarray(from, to));
 }

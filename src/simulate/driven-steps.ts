@@ -86,8 +86,20 @@ export class DrivenSteps {
     let clock = 0;
     let from: Float64Array = this.start;
     let at = 0;
+    const ends = last < 0 || (drive.level[last] === 0 && drive.slope[last] === 0);
     for (let i = 0; i < size; i++) {
       const u = since(times[first + i] - late.start, late.delay);
+      if (ends && moving && piece === last && i > 0) {
+        // Nothing enters any more: one step after another.
+        const h = u - clock;
+        const step = this.free.move(from, at, states, i * length, h, 1e-13 * h + 4e-16 * clock);
+        if (step > 0) clock += step;
+        from = states;
+        at = i * length;
+        rate[i] = 0;
+        rise[i] = 0;
+        continue;
+      }
       while (piece < last && drive.times[piece + 1] <= u) piece++;
       if (moving) {
         if (piece >= 0 && drive.times[piece] > clock) {

@@ -1,3 +1,4 @@
+import { Part } from "../compile/part.js";
 import type { RecordedPlant } from "../compile/record.js";
 import { NotRecorded, type Recorder } from "../compile/recorder.js";
 import type { Injection, Trial } from "../model/trial.js";
@@ -11,6 +12,8 @@ import { RecordedUnrolling } from "./record-unroll.js";
 export interface RecordedTrial {
   readonly recorder: Recorder;
   readonly puts: readonly RecordedPut[];
+  /** Transport delays of the plant's tubes, s, in its order. */
+  readonly tubes: readonly Slot[];
 }
 
 export interface RecordedPut {
@@ -44,11 +47,18 @@ const mostStates = 12;
  */
 export function recordTrial(plant: RecordedPlant, trial: Trial): RecordedTrial | undefined {
   try {
-    return { recorder: plant.recorder, puts: trial.injections.map((i) => recordPut(plant, trial, i)) };
+    const { recorder } = plant;
+    const puts = trial.injections.map((i) => recordPut(plant, trial, i));
+    return { recorder, puts, tubes: tubesOf(plant) };
   } catch (e) {
     if (e instanceof NotRecorded) return undefined;
     throw e;
   }
+}
+
+function tubesOf({ recorder, plant, volume, inflow }: RecordedPlant): Slot[] {
+  const { part } = plant.columns;
+  return volume.flatMap((v, i) => (part[i] === Part.Delay ? [recorder.tape.divide(v, inflow[i])] : []));
 }
 
 function recordPut(recorded: RecordedPlant, trial: Trial, injection: Injection): RecordedPut {

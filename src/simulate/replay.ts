@@ -3,6 +3,8 @@ import { type DenseSystem, DrivenSteps } from "./driven-steps.js";
 import { firstSeen } from "./moved-curves.js";
 import type { RecordedPassage, RecordedPut, RecordedTrial } from "./record-trial.js";
 
+import { addDirect, addSeen, addSeenOfTwo } from "./sights.js";
+
 /** Curves of the readings and their derivatives by direction, SI. */
 export interface Replayed {
   readonly curves: readonly Float64Array[];
@@ -54,15 +56,26 @@ export class Replay {
     seeds: Float64Array,
     directions: number,
   ): Replayed | undefined {
-    const { program, positive } = this;
-    program.run(inputs);
-    for (let i = 0; i < positive.length; i++) if (!(program.value[positive[i]] > 0)) return undefined;
-    program.slopes(seeds, directions);
+    if (!this.holds(inputs)) return undefined;
+    this.program.slopes(seeds, directions);
     const zeros = (): Float64Array[] => wanted.map(({ time }) => new Float64Array(time.length));
     const curves = zeros();
     const slopes = Array.from({ length: directions }, zeros);
     for (const put of this.recorded.puts) this.add(put, wanted, directions, { curves, slopes });
     return { curves, slopes };
+  }
+
+  /** Transport delays of the plant's tubes, s; undefined where the recording does not hold. */
+  delays(inputs: Float64Array): number[] | undefined {
+    return this.holds(inputs) ? this.recorded.tubes.map((slot) => this.program.value[slot]) : undefined;
+  }
+
+  /** Plays the numbers; are all that must be above zero? */
+  private holds(inputs: Float64Array): boolean {
+    const { program, positive } = this;
+    program.run(inputs);
+    for (let i = 0; i < positive.length; i++) if (!(program.value[positive[i]] > 0)) return false;
+    return true;
   }
 
   private add(
@@ -134,29 +147,18 @@ export class Replay {
     }
     const direct = v[passage.direct];
     const path = steps.along(time, first, { start, delay }, states.length > 0);
-    const size = time.length - first;
-    const { states: x, length, rate, rise } = path;
     const counts = this.counting(share, start, time, first);
-    const curve = into.curves[reading];
-    for (let i = 0; i < size; i++) {
-      let sum = direct * rate[i];
-      for (let j = 0; j < n; j++) sum += w[j] * x[i * length + j];
-      curve[first + i] += counts ? counts[i] * sum : sum;
-    }
+    const size = time.length - first;
+    const see = (onto: Float64Array, block: number, onward: number, turn: number): void => {
+      const add = states.length === 0 ? addDirect : n === 2 ? addSeenOfTwo : addSeen;
+      add({ onto, first, size, counts, n, path, block, w, v: dw, from: (block - 1) * n, onward, turn });
+    };
+    see(into.curves[reading], 0, direct, 0);
     for (let d = 0; d < count; d++) {
-      const moved = into.slopes[d][reading];
-      const own = (d + 1) * n;
       const late = slope[passage.delay * count + d];
       const onward = slope[passage.direct * count + d] - late * rateOfDrive;
-      const turn = -late * direct;
-      const from = d * n;
-      for (let j = 0; j < n; j++) dw[from + j] -= late * rates[j];
-      for (let i = 0; i < size; i++) {
-        let sum = onward * rate[i] + turn * rise[i];
-        const at = i * length;
-        for (let j = 0; j < n; j++) sum += w[j] * x[at + own + j] + dw[from + j] * x[at + j];
-        moved[first + i] += counts ? counts[i] * sum : sum;
-      }
+      for (let j = 0; j < n; j++) dw[d * n + j] -= late * rates[j];
+      see(into.slopes[d][reading], d + 1, onward, -late * direct);
     }
   }
 
