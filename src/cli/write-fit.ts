@@ -29,9 +29,17 @@ export function writeFit(file: string, network: NetworkDocument, fit: Fit, statu
   if (status !== 0) return refuse("the fit did not end well");
   const now = io.read(file);
   if (now === undefined || decodeText(now) !== network.at.source.text) return refuse("it changed while the fit ran");
-  const { text, rewritten, problems } = writeBack(network, fit.parameters);
+  const { text, rewritten, problems } = writeBack(
+    network,
+    fit.parameters.filter((p) => !p.ofTrial),
+  );
   if (text === undefined) return refuse("a value cannot be put back", problems);
   io.write(file, text);
   const lines = rewritten.map((r) => `  ${r.name}: ${r.before} -> ${r.after}`);
-  return { failed: false, written: rewritten, text: [`written to ${file}`, ...lines].join("\n"), problems, notes: [] };
+  const left = [...new Set(fit.parameters.flatMap((p) => p.ofTrial?.name ?? []))].map(
+    (name) =>
+      `  ${name}: left as it is, since each trial has a value of its own; write in a duty's \`with:\` which one it takes`,
+  );
+  const said = [`written to ${file}`, ...lines, ...left].join("\n");
+  return { failed: false, written: rewritten, text: said, problems, notes: [] };
 }

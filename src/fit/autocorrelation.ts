@@ -34,7 +34,7 @@ export interface Strand {
 
 /**
  * How the residuals of each reading hang together: a first-order autoregression in time against independent residuals, chosen
- * where AICc is the smaller, or as the reading's `correlated:` says.
+ * where AICc is smaller by more than 2, or as the reading's `correlated:` says.
  * @param residuals  one per observation, any common scale
  * @param basis      orthonormal columns that the fit took out of them, longer by the priors or not at all
  * @see Burnham & Anderson, Model Selection and Multimodel Inference, 2nd ed. 2002, section 2.4
@@ -50,8 +50,8 @@ export function autocorrelationOf(
   const found = correlationTimes(residuals, basis, asked);
   const unknowns = basis.length + 1;
   const left = n - unknowns - 2;
-  // What AICc asks of one more unknown.
-  const price = left > 0 ? 2 + (4 * (unknowns + 1)) / left : Number.POSITIVE_INFINITY;
+  // What AICc asks of one more unknown, and two more: with less between them the two are as good (Burnham & Anderson, section 2.6).
+  const price = left > 0 ? 4 + (4 * (unknowns + 1)) / left : Number.POSITIVE_INFINITY;
   const strands = found.flatMap(({ time, gain }, block): Strand[] => {
     if (gain <= price) return [];
     const { rows } = chains[block];

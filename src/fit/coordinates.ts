@@ -7,8 +7,11 @@ import type { Unit } from "../units/unit.js";
  * parameter or, with `spacing: log`, in its logarithm. Without bounds u is the parameter over its own size.
  */
 export interface Coordinate {
+  /** For people: of a parameter with a value in each trial `trial title/name`. */
   readonly name: string;
   readonly named: Named;
+  /** The trial that it belongs to, by its index; undefined: all. */
+  readonly trial?: number;
   readonly unit: Unit;
   /** Bounds in SI; infinite where the file gives none. */
   readonly lower: number;

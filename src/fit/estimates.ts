@@ -90,6 +90,7 @@ export function estimatesOf({ problem, x, at }: Settled): Estimates {
     const cut: [number, number] = [Math.max(c.lower, whole[0]), Math.min(c.upper, whole[1])];
     return {
       name: c.name,
+      ...(c.trial === undefined ? {} : { ofTrial: { name: c.named.name, trial: setup.trials[c.trial].title } }),
       value: c.toSi(x[j]),
       unit: c.unit,
       standardError: se,

@@ -6,7 +6,10 @@ import { shifted } from "./settings.js";
 /** The declared facts of all trials, as a run may move them within their `±`. */
 export interface Facts {
   readonly trials: Trial[];
+  /** SI by name; what has a value in each trial is here by its name for people. */
   readonly values: Record<string, number>;
+  /** By trial, with its own values; made when it is first asked for. */
+  ofTrials?: readonly Readonly<Record<string, number>>[];
 }
 
 /** A fact with a declared standard deviation: an unknown that its `±` holds near what the file says. */

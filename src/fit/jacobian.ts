@@ -103,8 +103,9 @@ function allCurveSlopes(setup: Setup, x: Float64Array, at: Evaluation): (readonl
       const held = setup.held[j - setup.coordinates.length];
       return (t: number): Direction | undefined => scaled(held.direction(t), held.sd);
     }
-    const direction = { names: new Map([[c.name, c.slope(u)]]) };
-    return (): Direction => direction;
+    const direction = { names: new Map([[c.named.name, c.slope(u)]]) };
+    return (trial: number): Direction | undefined =>
+      c.trial === undefined || c.trial === trial ? direction : undefined;
   });
   return slopesOf(setup, at.facts, directions).map((s, j) => s ?? curveDifferences(setup, x, j, at.curves));
 }

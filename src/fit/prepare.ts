@@ -1,12 +1,13 @@
 import { evaluateNames } from "../compile/evaluate.js";
 import type { Named, Network } from "../model/network.js";
 import type { Trial } from "../model/trial.js";
+import type { Env } from "../model/value.js";
 import type { Report } from "../problems/report.js";
 import { nearest } from "../text/nearest.js";
-import { coordinateOf } from "./coordinates.js";
+import { type Coordinate, coordinateOf } from "./coordinates.js";
 import type { ForwardModel } from "./forward.js";
 import { heldFacts, uncertainConstants } from "./held.js";
-import { blocksOf, countOf } from "./observations.js";
+import { type Block, blocksOf, countOf } from "./observations.js";
 import type { Setup } from "./setup.js";
 
 /**
@@ -32,12 +33,31 @@ export function prepare(
     return undefined;
   }
   const env = evaluateNames(network, {});
-  const coordinates = parameters.map((p) => coordinateOf(network, p, env));
+  const coordinates = parameters.flatMap((p) => coordinatesOf(network, p, env, trials, blocks));
   const names = new Set(parameters.map((p) => p.name));
   const held = heldFacts(network, trials, names, env);
   const constants = uncertainConstants(network, trials, env);
   const cost = { evaluations: 0 };
   return { network, env, trials, coordinates, held, constants, blocks, observations, model, cost };
+}
+
+/** One for all trials, or one for each that has points. */
+function coordinatesOf(
+  network: Network,
+  named: Named,
+  env: Env,
+  trials: readonly Trial[],
+  blocks: readonly Block[],
+): Coordinate[] {
+  const one = coordinateOf(network, named, env);
+  const read = [...new Set(blocks.map((b) => b.trial))];
+  if (!named.perTrial || read.length < 2) return [one];
+  const titles = read.map((k) => trials[k].title);
+  return read.map((trial, i) => {
+    const twins = titles.slice(0, i).filter((t) => t === titles[i]).length;
+    const title = twins > 0 ? `${titles[i]} (${twins + 1})` : titles[i];
+    return { ...one, name: `${title}/${named.name}`, trial };
+  });
 }
 
 function freeParameters(

@@ -56,6 +56,8 @@ export interface FittedProfile {
 
 export interface FittedParameter {
   readonly name: string;
+  /** Of a parameter with a value in each trial: its name, and the title of the trial. */
+  readonly ofTrial?: { readonly name: string; readonly trial: string };
   readonly value: number;
   readonly unit: Unit;
   /** Linear theory, independent residuals; undefined where the data cannot tell. */

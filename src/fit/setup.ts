@@ -56,7 +56,7 @@ export function curvesOf(setup: Setup, facts: Facts): Float64Array[] | undefined
   for (const [k, trial] of facts.trials.entries()) {
     const blocks = setup.blocks.filter((b) => b.trial === k);
     if (blocks.length === 0) continue;
-    const answer = setup.model.respond(trial, facts.values, wantedTimes(trial, blocks));
+    const answer = setup.model.respond(trial, valuesOf(setup, facts, k), wantedTimes(trial, blocks));
     if (!answer) return undefined;
     for (const b of blocks) curves.push(answer[b.reading]);
   }
@@ -82,7 +82,7 @@ export function slopesOf(
       const direction = slopes[p] && of(k);
       return direction ? [{ p, direction }] : [];
     });
-    const at = { values: facts.values, shifted };
+    const at = { values: valuesOf(setup, facts, k), shifted };
     const answer = setup.model.slopes?.(
       trial,
       at,
@@ -97,6 +97,17 @@ export function slopesOf(
     }
   }
   return slopes;
+}
+
+/** The values that hold in one trial. */
+export function valuesOf(setup: Setup, facts: Facts, trial: number): Readonly<Record<string, number>> {
+  if (setup.coordinates.every((c) => c.trial === undefined)) return facts.values;
+  facts.ofTrials ??= facts.trials.map((_, k) => {
+    const own = { ...facts.values };
+    for (const c of setup.coordinates) if (c.trial === k) own[c.named.name] = facts.values[c.name];
+    return own;
+  });
+  return facts.ofTrials[trial];
 }
 
 /** Parameters and declared facts at a point of the search. */

@@ -1,5 +1,5 @@
 import { lowDiscrepancy } from "../numerics/low-discrepancy.js";
-import { factsAt, type Setup } from "./setup.js";
+import { factsAt, type Setup, valuesOf } from "./setup.js";
 
 /** How many starts, and from which seed. */
 export interface StartPlan {
@@ -110,7 +110,7 @@ export function withCoordinate(x: Float64Array, j: number, u: number): Float64Ar
 function delays(setup: Setup, from: Float64Array, j: number, u: number): number[] {
   for (const share of [0, 0.02, 0.1, 0.3]) {
     const facts = factsAt(setup, withCoordinate(from, j, u + share * (from[j] - u)));
-    const all = facts.trials.flatMap((trial) => [...setup.model.delays(trial, facts.values)]);
+    const all = facts.trials.flatMap((trial, k) => [...setup.model.delays(trial, valuesOf(setup, facts, k))]);
     if (all.length > 0 && all.every(Number.isFinite)) return all;
   }
   return [];

@@ -49,6 +49,8 @@ export interface Named {
   readonly value: Value;
   readonly between: readonly [Value, Value] | undefined;
   readonly spacing: "linear" | "log";
+  /** A parameter that has a value of its own in each trial. */
+  readonly perTrial?: boolean;
   readonly about: string | undefined;
   /** Of a parameter that a chemistry brings into a fit: its file, and its name there. */
   readonly chemistry?: { readonly path: string; readonly name: string };

@@ -1,5 +1,7 @@
 import { checkDuty } from "../check/duty.js";
 import { checkTrial } from "../check/trial.js";
+import type { Duty } from "../model/duty.js";
+import type { Network } from "../model/network.js";
 import type { ChangeDocument, Rival, Study } from "../model/study.js";
 import { collector, hasErrors, type Report } from "../problems/report.js";
 import type { Files } from "../read/files.js";
@@ -42,6 +44,7 @@ export function parseStudy(text: string | Reading, options: ParseOptions = {}): 
       const { report: own, problems } = collector();
       for (const trial of trials) checkTrial(network, trial, own);
       for (const duty of duties) checkDuty(network, duty, own);
+      if (trials.length > 1) for (const duty of duties) perTrialTold(network, duty, own);
       // The same slip shows against every rival: once is enough.
       if (hasErrors(problems)) {
         adopt(problems);
@@ -61,6 +64,13 @@ export function parseStudy(text: string | Reading, options: ParseOptions = {}): 
       seed: Number(textOf(tree, "seed") ?? 1),
     };
   });
+}
+
+/** What has a value in each trial must have one in a duty. */
+function perTrialTold(network: Network, duty: Duty, report: Report): void {
+  for (const { name, perTrial } of network.names) {
+    if (perTrial && !duty.settings.has(name)) report("per-trial-duty", duty.at, { name, duty: duty.title });
+  }
 }
 
 /** Rivals of one title are told apart by their files wherever results name them. */

@@ -87,7 +87,7 @@ function details(
   value: Value,
   scope: Scope,
   report: Report,
-): Pick<Named, "between" | "spacing" | "about"> {
+): Pick<Named, "between" | "spacing" | "about" | "perTrial"> {
   const about = textOf(d.details, "about");
   if (d.replaces) return { between: undefined, spacing: "linear", about };
   const spacing = textOf(d.details, "spacing") === "log" ? "log" : "linear";
@@ -97,7 +97,8 @@ function details(
     const [low, high] = node.items.map((item) => resolveValue(item, value.dimension, scope, report));
     if (low && high) between = [low, high];
   }
-  return { between, spacing, about };
+  const perTrial = textOf(d.details, "per") === "trial";
+  return { between, spacing, about, ...(perTrial ? { perTrial } : {}) };
 }
 
 /** Dimension by its name, or names. */

@@ -78,10 +78,6 @@ describe("one finding a place, at the place", () => {
 });
 
 describe("what this version does not honour is refused", () => {
-  test.each([["parameters: {a: {value: 1, per: trial}}", ["not-yet per"]]])("%s", (text, findings) => {
-    expect(network(text).findings).toEqual(findings);
-  });
-
   test("forms of a duty and of a chemistry", () => {
     const duty =
       "duty: d\nformat: 1\nfeeds: {feed: {A: {from: 1 mol/L, to: 2 mol/L}, temperature: 25 degC}}\nheat: adiabatic\n";

@@ -44,6 +44,7 @@ export function parameterJson(p: FittedParameter): object {
   const spread = (si: number): number | null => finite(differenceInUnit(si, p.unit));
   const ends = p.interval95?.map((v) => quantity(v, p.unit).value);
   return {
+    ...(p.ofTrial ? { parameter: p.ofTrial.name, trial: p.ofTrial.trial } : {}),
     ...quantity(p.value, p.unit),
     standardError: p.standardError === undefined ? null : spread(p.standardError),
     ...(p.standardErrorCorrelated === undefined ? {} : { standardErrorCorrelated: spread(p.standardErrorCorrelated) }),

@@ -23,4 +23,10 @@ export const studyEntries = {
     fix: "write a figure as in `report:`, one of `=`, `>=`, `<=`, and a value: `conversion of A >= 95 %`",
     example: { text: "95 % conversion" },
   }),
+  "per-trial-duty": entry<{ name: string; duty: string }>({
+    severity: "error",
+    says: ({ name, duty }) =>
+      `'${name}' has a value of its own in each trial, so that no test tells which it has in the duty '${duty}'`,
+    fix: ({ name }) => `say so in the duty: \`with: {${name}: …}\`, with a \`±\` for what is unsure`,
+  }),
 } as const;

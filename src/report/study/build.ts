@@ -94,7 +94,7 @@ function equalsOf(result: StudyResult): string[] {
 
 function parametersOf(best: Ranked): ReportParameter[] {
   return (best.fit?.parameters ?? []).map((p): ReportParameter => {
-    const about = best.rival.network.names.find((n) => n.name === p.name)?.about;
+    const about = best.rival.network.names.find((n) => n.name === (p.ofTrial?.name ?? p.name))?.about;
     return { name: p.name, estimate: parameterEstimate(p), atBound: p.atBound, ...(about ? { about } : {}) };
   });
 }

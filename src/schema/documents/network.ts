@@ -1,5 +1,5 @@
 import type { KeyShape, RecordShape, Shape, VariantShape } from "../shape.js";
-import { choice, either, heading, later, list, name, named, quantity, record, text } from "./common.js";
+import { choice, either, heading, list, name, named, quantity, record, text } from "./common.js";
 import { orVariant } from "./variant.js";
 
 /** What the schema needs to know of a kind of compartment; the kinds table has more. */
@@ -120,7 +120,11 @@ const parameters: KeyShape = {
         says: "What it means, for tables and reports.",
         example: "share of the feed that slips to the outlet",
       },
-      per: later("A value of its own in each trial."),
+      per: {
+        shape: choice("trial"),
+        says: "`trial`: it has a value of its own in each trial that is fitted, as a stirrer's circulation or the leak of a valve may have; `value` is where each begins, and holds in `simulate`, `sweep` and a duty by itself. In results each is named `trial title/name`. A study's duties must say its value in `with:`, since no test tells which it has there; `fit --write` leaves it as it is.",
+        example: "trial",
+      },
     }),
   ),
 };

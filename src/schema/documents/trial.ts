@@ -71,7 +71,7 @@ const reading: Shape = record({
   },
   correlated: {
     says:
-      "How errors of neighbouring readings hang together: as exp(-gap / time), a first-order autoregression. Without the key the values of a fit are those of plain least squares, and where its residuals hang together (by AICc) errors and intervals are what such residuals make them. " +
+      "How errors of neighbouring readings hang together: as exp(-gap / time), a first-order autoregression. Without the key the values of a fit are those of plain least squares, and where its residuals hang together (by AICc, better by more than 2) errors and intervals are what such residuals make them. " +
       "A time, or `fitted`, which finds one, fits by generalised least squares: it follows quick changes more than slow ones, so it is for a logger whose errors are known to wander, not for residuals that show what the vessel lacks. A censored reading parts the ones before from those after. `no` takes residuals as independent, whatever they look like.",
     example: "fitted",
     shape: text,
