@@ -3,8 +3,10 @@ import { checkTrial } from "../check/trial.js";
 import { uncarried } from "../compile/carried.js";
 import { compile } from "../compile/compile.js";
 import { fit as fitNetwork } from "../fit/fit.js";
+import { withKinetics } from "../fit/kinetics.js";
 import type { Fit } from "../fit/result.js";
 import type { Network } from "../model/network.js";
+import type { Trial } from "../model/trial.js";
 import { parseDuty } from "../parse/duty.js";
 import { parseNetwork } from "../parse/network.js";
 import { parseTrial } from "../parse/trial.js";
@@ -12,6 +14,7 @@ import { collector } from "../problems/report.js";
 import { drawsOf } from "../study/draws-of.js";
 import { inputsOf } from "../study/inputs.js";
 import type { Operation } from "../study/operate.js";
+import { operationOf } from "../study/operation.js";
 import { rowsFor, sourcesOf } from "../study/sources.js";
 import { formatNumber } from "../units/format.js";
 import type { Context } from "./context.js";
@@ -49,12 +52,15 @@ function ask(file: string, options: SweepOptions, { inputs, io }: Context): Aske
   const set = settingsFrom(network, options.set);
   const plant = compile(network, set).plant ?? plantAt(network, set);
   inputs.accept(uncarried(plant, "reaction"));
-  const fit = options.trial === undefined ? undefined : fitted(network, options.trial, options.seed, { inputs, io });
-  const operation: Operation = { network, duty, values: { ...fit?.values, ...set } };
+  const trials = (options.trial ?? []).map((path) => inputs.document(path, parseTrial));
+  const fit = trials.length === 0 ? undefined : fitted(network, trials, options.seed, { inputs, io });
+  const found = operationOf(network, fit, trials, duty);
+  const operation: Operation = { ...found, values: { ...found.values, ...set } };
   const known = new Set(inputsOf(operation).map((i) => i.name));
   if (known.size === 0) throw new UsageError("neither network nor duty has an input by name");
-  const sources = options.draws === 0 ? [] : sourcesOf(network, fit, duty);
-  const draws = sources.length === 0 ? [] : drawsOf(network, fit, options.draws, options.seed).settings;
+  const sources = options.draws === 0 ? [] : sourcesOf(operation, fit);
+  const draws =
+    sources.length === 0 ? [] : drawsOf(withKinetics(network, trials), fit, options.draws, options.seed).settings;
   // What --set says is known.
   const rows = rowsFor(operation, draws, options.seed).map((r) => ({ ...r, vessel: { ...r.vessel, ...set } }));
   return { operation, rows, carries: rows.length === 0 ? "" : carried(fit, sources.length, rows.length) };
@@ -69,8 +75,7 @@ function carried(fit: Fit | undefined, sources: number, rows: number): string {
   return `${what.join(" and ")}, ${rows} draws`;
 }
 
-function fitted(network: Network, files: readonly string[], seed: number, { inputs, io }: Context): Fit {
-  const trials = files.map((path) => inputs.document(path, parseTrial));
+function fitted(network: Network, trials: readonly Trial[], seed: number, { inputs, io }: Context): Fit {
   const { report, problems } = collector();
   for (const trial of trials) checkTrial(network, trial, report);
   inputs.accept(problems);

@@ -43,10 +43,8 @@ export function changeOutcomes(
   );
   const after = draws.settings.map((settings, i) => ({ ...keep(settings), ...varied[i] }));
   const figures = [...present].flatMap(([duty, sample]): ChangedFigure[] => {
-    const [today, then]: Operation[] = [
-      { network: rival.network, duty, values: fit?.values ?? {} },
-      { network: changed.network, duty, values: keep(fit?.values ?? {}) },
-    ];
+    const today = sample.operation;
+    const then: Operation = { ...today, network: changed.network, values: keep(today.values) };
     const [old, now] = [operate(today).figures, operate(then).figures];
     if (!old || !now) return [];
     const was = sample.values;

@@ -13,6 +13,8 @@ export interface Operation {
   readonly duty: Duty;
   /** Values in place of the file's, such as fitted ones; the duty's own `with:` and `flows:` come before them. SI. */
   readonly values: Settings;
+  /** Rate constants that were fitted along: under what name the fit has them, and what the chemistry calls them. */
+  readonly kinetics: ReadonlyMap<string, string>;
 }
 
 /** Values in place of all others: of the network (flows included), and of the duty and its chemistry. SI, by name. */

@@ -1,10 +1,12 @@
 import { compile } from "../compile/compile.js";
 import { readMoments } from "../data/moments.js";
 import { type FitOptions, fit } from "../fit/fit.js";
+import { withKinetics } from "../fit/kinetics.js";
 import type { Duty } from "../model/duty.js";
 import type { Rival, Study } from "../model/study.js";
 import { changeOutcomes } from "./compare.js";
 import { drawsOf, type RivalDraws } from "./draws-of.js";
+import { operationOf } from "./operation.js";
 import { predictDuty } from "./predict.js";
 import { standings, survives } from "./rank.js";
 import { residenceOf } from "./residence.js";
@@ -52,16 +54,18 @@ export function runStudy(study: Study, options: StudyOptions = {}): StudyResult 
   const ranking = withProfiles(study, ranked, options, cancelled);
   const survivors = ranking.filter((r) => r.survives && r.plant);
   const draws = new Map<Rival, RivalDraws>();
-  for (const r of survivors) if (!cancelled()) draws.set(r.rival, drawsOf(r.rival.network, r.fit, count, study.seed));
+  for (const r of survivors)
+    if (!cancelled())
+      draws.set(r.rival, drawsOf(withKinetics(r.rival.network, study.trials), r.fit, count, study.seed));
   const alive = survivors.filter((r) => draws.has(r.rival));
   const samples = new Map<Rival, Map<Duty, Sample>>();
   const predictions = alive.flatMap((r, i) =>
     study.duties.flatMap((duty) => {
       tell({ stage: "predicting", what: duty.title, done: 0.8 + (0.1 * i) / alive.length });
       if (cancelled()) return [];
-      const operation = { network: r.rival.network, duty, values: r.fit?.values ?? {} };
+      const operation = operationOf(r.rival.network, r.fit, study.trials, duty);
       const sample = sampleOf(operation, draws.get(r.rival)?.settings ?? [], study.seed);
-      samples.set(r.rival, (samples.get(r.rival) ?? new Map()).set(duty, sample));
+      samples.set(r.rival, (samples.get(r.rival) ?? new Map()).set(operation.duty, sample));
       return predictDuty(r, sample);
     }),
   );

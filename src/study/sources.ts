@@ -25,7 +25,11 @@ export interface Source {
  * One row of values per draw: what the fit leaves open and what network, duty and chemistry declare with a `±`; the duty's
  * own values come before the network's. Draws of one name are shared by all networks and duties.
  */
-export function rowsFor({ network, duty, values }: Operation, settings: readonly Settings[], seed: number): Row[] {
+export function rowsFor(
+  { network, duty, values, kinetics }: Operation,
+  settings: readonly Settings[],
+  seed: number,
+): Row[] {
   const env = evaluateNames(network, values);
   const made = network.names.filter((n) => n.value.uses.length > 0 && n.value.sd && n.role !== "feed-flow");
   const inputs = onlyDuty(duty);
@@ -47,6 +51,7 @@ export function rowsFor({ network, duty, values }: Operation, settings: readonly
       delete vessel[name];
     }
     const inDuty: Record<string, number> = { ...own[i] };
+    for (const [name, constant] of kinetics) if (name in drawn) inDuty[constant] = drawn[name];
     const offDuty: Record<string, number> = {};
     for (const name of follows) {
       const known = sd.get(name);
@@ -63,9 +68,10 @@ export const drawnValue = ({ off, ...row }: Row, name: string, half: "vessel" | 
   row[half][name] ?? off[half][name] ?? Number.NaN;
 
 /** Everything that makes the figures of a duty unsure, in an order of its own. */
-export function sourcesOf(network: Network, fit: Fit | undefined, duty: Duty): Source[] {
+export function sourcesOf({ network, duty, kinetics }: Operation, fit: Fit | undefined): Source[] {
   const set = new Set(Object.keys(networkSettings(duty)));
   const fitted = fittedNames(network, fit).filter((name) => !set.has(name));
+  const rates = [...kinetics.values()].sort();
   const one = (kind: SourceKind, name: string, place: "vessel" | "duty"): Source => ({
     kind,
     name,
@@ -76,7 +82,9 @@ export function sourcesOf(network: Network, fit: Fit | undefined, duty: Duty): S
   const kindOf = (name: string): SourceKind =>
     name === "temperature" ? "temperature" : constants.has(name) ? "kinetics" : "feed";
   const sources = [
-    ...(fitted.length > 0 ? [{ kind: "fit" as const, name: fitted.join(", "), vessel: fitted, duty: [] }] : []),
+    ...(fitted.length + rates.length > 0
+      ? [{ kind: "fit" as const, name: [...fitted, ...rates].join(", "), vessel: fitted, duty: rates }]
+      : []),
     ...declaredNames(network, fit).flatMap((n) => (set.has(n.name) ? [] : [one("vessel", n.name, "vessel")])),
     ...declaredFlows(network, duty).map(({ name }) => one(name.endsWith(".flow") ? "flow" : "vessel", name, "vessel")),
     ...onlyDuty(duty).map(({ name }) => one(kindOf(name), name, "duty")),

@@ -49,7 +49,7 @@ export function spreadsOf(
   rows: readonly Row[],
   values: readonly (readonly number[] | undefined)[],
 ): (Spread | undefined)[] {
-  const sources = sourcesOf(operation.network, fit, operation.duty);
+  const sources = sourcesOf(operation, fit);
   const slopes = linearShares(operation, fit, sources);
   let frozen: (number[] | undefined)[][] | undefined;
   const half = Math.floor(rows.length / 2);
@@ -113,7 +113,7 @@ function linearShares(
   fit: Fit | undefined,
   sources: readonly Source[],
 ): { figures: { sd: number; shares: number[] }[] } | undefined {
-  const { network, duty } = operation;
+  const { network, duty, kinetics } = operation;
   const middle = valuesAt(operation, noRow);
   if (!middle) return undefined;
   const env = evaluateNames(network, operation.values);
@@ -122,16 +122,19 @@ function linearShares(
   const inputs = new Map(dutyInputs(duty.chemistry, duty).map((i) => [i.name, i]));
   const set = networkSettings(duty);
   const feedSd = new Map(network.feeds.map((f) => [`${f.name}.flow`, f.flow.sd?.(env) ?? 0]));
+  const fitName = new Map([...kinetics].map(([name, constant]) => [constant, name]));
+  const place = (name: string): number => fit?.covariance.names.indexOf(fitName.get(name) ?? name) ?? -1;
   const covariance = (a: string, b: string): number => {
-    const [i, j] = [fit?.covariance.names.indexOf(a) ?? -1, fit?.covariance.names.indexOf(b) ?? -1];
+    const [i, j] = [place(a), place(b)];
     if (i >= 0 && j >= 0) return fit?.covariance.rows[i][j] ?? Number.NaN;
     if (a !== b) return 0;
     return (inputs.get(a)?.sd ?? declared.get(a) ?? feedSd.get(a) ?? Number.NaN) ** 2;
   };
-  const slopeBy = (name: string, place: "vessel" | "duty"): number[] | undefined => {
-    const value = inputs.get(name)?.value ?? set[name] ?? env[slot.get(name) ?? -1];
+  const slopeBy = (name: string, half: "vessel" | "duty"): number[] | undefined => {
+    const value =
+      inputs.get(name)?.value ?? duty.with.get(name)?.value.of([]) ?? set[name] ?? env[slot.get(name) ?? -1];
     const step = 0.02 * Math.sqrt(covariance(name, name));
-    const at = (x: number): number[] | undefined => valuesAt(operation, { ...noRow, [place]: { [name]: x } });
+    const at = (x: number): number[] | undefined => valuesAt(operation, { ...noRow, [half]: { [name]: x } });
     const [up, down] = [at(value + step), at(value - step)];
     // At a bound of what is possible, from one side.
     if (up && down) return up.map((u, k) => (u - down[k]) / (2 * step));

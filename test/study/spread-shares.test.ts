@@ -31,7 +31,12 @@ report: [log-removal of A, A at out]
 function spreads(constants: string, k: string, count = 200, seed = 3): (Spread | undefined)[] {
   const read = () => chemistry(k);
   const vessel = parseNetwork(network(constants)).document;
-  const operation = { network: vessel, duty: parseDuty(duty, { read }).document as Duty, values: {} };
+  const operation = {
+    network: vessel,
+    duty: parseDuty(duty, { read }).document as Duty,
+    values: {},
+    kinetics: new Map<string, string>(),
+  };
   if (!vessel) throw new Error("no vessel");
   const sample = sampleOf({ ...operation, network: vessel }, drawsOf(vessel, undefined, count, seed).settings, seed);
   return spreadsOf(sample.operation, undefined, sample.rows, sample.values);

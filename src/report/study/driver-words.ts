@@ -2,11 +2,12 @@ import type { Driver, Spread } from "../../study/spread-shares.js";
 import { chance } from "../digits.js";
 
 /** What people call an uncertain input. */
-export function driverName({ kind, name, vessel }: Driver): string {
+export function driverName({ kind, name, vessel, duty }: Driver): string {
   const [place, what] = [name.slice(0, name.lastIndexOf(".")), name.slice(name.lastIndexOf(".") + 1)];
   switch (kind) {
     case "fit":
-      return vessel.length === 1 ? `${name} (fitted)` : "the tracer fit";
+      if (vessel.length + duty.length === 1) return `${name} (fitted)`;
+      return duty.length === 0 ? "the tracer fit" : vessel.length === 0 ? "the fitted kinetics" : "the fit";
     case "flow":
       return `flow of ${place}`;
     case "feed":
@@ -17,10 +18,10 @@ export function driverName({ kind, name, vessel }: Driver): string {
 }
 
 /** How to learn more of it. */
-function remedy({ kind, name, vessel }: Driver): string {
+function remedy({ kind, name, vessel, duty }: Driver): string {
   switch (kind) {
     case "fit":
-      return `a longer or another tracer test, which pins ${vessel.join(", ")}, narrows it most`;
+      return `${duty.length === 0 ? "a longer or another tracer test" : "another test"} that pins ${[...vessel, ...duty].join(", ")} narrows it most`;
     case "kinetics":
       return `measure ${name} before the vessel is changed`;
     case "flow":
