@@ -1,12 +1,17 @@
-import { dot, type IterativeMethod, type IterativeProblem, norm } from "./krylov.js";
+import type { IterativeMethod, IterativeProblem } from "./krylov.js";
+import { plainVectors } from "./vectors.js";
 
 /**
  * BiCGStab, preconditioned from the right, begun anew from the true residual where it breaks down or its own residual
  * has drifted from the true one.
  * @see H.A. van der Vorst, SIAM J. Sci. Stat. Comput. 13 (1992) 631-644
  */
-export function bicgstab({ size: n, multiply, preconditioner }: IterativeProblem): IterativeMethod {
-  const [r, shadow, p, v, t, y, z] = Array.from({ length: 7 }, () => new Float64Array(n));
+export function bicgstab(problem: IterativeProblem): IterativeMethod {
+  const { size: n, multiply, preconditioner, vectors = plainVectors(n) } = problem;
+  const { dot, turn, advance } = vectors;
+  const [r, shadow, p, v, t] = Array.from({ length: 5 }, vectors.make);
+  const [y, z] = preconditioner ? [vectors.make(), vectors.make()] : [p, r];
+  const norm = (x: Float64Array): number => Math.sqrt(dot(x, x));
   return (b, x, { relative, most, rough }) => {
     const size = norm(b);
     const wanted = relative * size;
@@ -33,46 +38,27 @@ export function bicgstab({ size: n, multiply, preconditioner }: IterativeProblem
         if (!(Math.abs(next) > 0) || !Number.isFinite(beta)) break;
         rho = next;
         turn(p, r, v, beta, omega);
-        const ahead = preconditioner ? y : p;
         if (preconditioner) {
           y.set(p);
           preconditioner.apply(y);
         }
-        multiply(ahead, v);
+        multiply(y, v);
         alpha = rho / dot(shadow, v);
         if (!Number.isFinite(alpha)) break;
         products++;
-        if (advance(x, alpha, ahead, r, v) <= wanted) break;
-        const aside = preconditioner ? z : r;
+        if (advance(x, alpha, y, r, v) <= wanted) break;
         if (preconditioner) {
           z.set(r);
           preconditioner.apply(z);
         }
-        multiply(aside, t);
+        multiply(z, t);
         products++;
         omega = dot(t, r) / dot(t, t);
         if (!(Math.abs(omega) > 0)) break;
-        if (advance(x, omega, aside, r, t) <= wanted) break;
+        if (advance(x, omega, z, r, t) <= wanted) break;
       }
       if (rough && norm(r) <= wanted) return { reached: true, residual: norm(r) / size, products };
     }
     return { reached: false, residual: left / size, products };
   };
-}
-
-/** The next direction: p <- r + beta (p - omega v). Loops stand in functions of their own, where they are compiled best. */
-function turn(p: Float64Array, r: Float64Array, v: Float64Array, beta: number, omega: number): void {
-  for (let i = 0; i < p.length; i++) p[i] = r[i] + beta * (p[i] - omega * v[i]);
-}
-
-/** x += step way, r -= step moved; returns the norm of r. */
-function advance(x: Float64Array, step: number, way: Float64Array, r: Float64Array, moved: Float64Array): number {
-  let squares = 0;
-  for (let i = 0; i < r.length; i++) {
-    x[i] += step * way[i];
-    const rest = r[i] - step * moved[i];
-    r[i] = rest;
-    squares += rest * rest;
-  }
-  return Math.sqrt(squares);
 }

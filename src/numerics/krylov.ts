@@ -1,4 +1,5 @@
 import type { Preconditioner } from "./ilu.js";
+import type { Vectors } from "./vectors.js";
 
 /** A system that is known only by what its matrix does to a vector. */
 export interface IterativeProblem {
@@ -6,6 +7,8 @@ export interface IterativeProblem {
   /** y = A x; neither allocates nor changes x. */
   readonly multiply: (x: Float64Array, y: Float64Array) => void;
   readonly preconditioner?: Pick<Preconditioner, "apply">;
+  /** Where its vectors are to lie; those of the caller, too. Default: plain arrays. */
+  readonly vectors?: Vectors;
 }
 
 export interface IterativeGoal {

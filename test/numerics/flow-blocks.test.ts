@@ -20,7 +20,7 @@ function network(seed: number, size: number) {
   return { graph: { size, from, to }, share: flow.map((q, k) => q / inflow[to[k]]), random };
 }
 
-describe.each([1, 2, 3])("blocks of %d", (n) => {
+describe.each([1, 2, 3, 4, 7])("blocks of %d", (n) => {
   test.each([false, true])("the solution is that of elimination; rows with a matrix of their own: %s", (special) => {
     const size = 40;
     const { graph, share, random } = network(7 + n, size);
