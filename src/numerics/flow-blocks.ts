@@ -1,7 +1,7 @@
 import { bicgstab } from "./bicgstab.js";
 import type { FlowRows } from "./flow-rows.js";
 import { FlowSweeps, stride } from "./flow-sweeps.js";
-import type { IterativeMethod } from "./krylov.js";
+import type { Iterated, IterativeGoal, IterativeMethod } from "./krylov.js";
 import { solveSmall } from "./small-dense.js";
 import { compiledVectors } from "./vectors.js";
 import { roomFor, Workspace } from "./wasm/workspace.js";
@@ -128,19 +128,18 @@ export class FlowBlocks {
 
   /**
    * Solves A x = b.
-   * @param relative how far the residual (behind the first sweep) is to fall
-   * @param most products of the iteration after which it gives up
+   * @param goal how far the residual (behind the first sweep) is to fall
    * @returns how far it fell
    */
-  solve(b: Float64Array, x: Float64Array, relative: number, most: number): number {
+  solve(b: Float64Array, x: Float64Array, goal: IterativeGoal): Iterated {
     const { n, m, sweep, sweeps, rhs } = this;
     this.scale(b, this.z);
     sweeps.fore(sweep, this.z, rhs);
     this.x.fill(0);
-    const { residual } = this.iterate(rhs, this.x, { relative, most, rough: true });
+    const iterated = this.iterate(rhs, this.x, goal);
     sweeps.back(sweep, this.x, this.x);
     for (let p = 0; p < this.rows.size; p++) for (let i = 0; i < n; i++) x[p * n + i] = this.x[p * m + i];
-    return residual;
+    return iterated;
   }
 
   /** v_i = Delta_i^-1 b_i */

@@ -1,53 +1,58 @@
-import { bicgstab } from "./bicgstab.js";
-import { incompleteLu } from "./ilu.js";
-import type { IterativeMethod } from "./krylov.js";
+import { FlowBlocks } from "./flow-blocks.js";
+import { flowRows } from "./flow-rows.js";
 import type { MixedRows } from "./mixed-rows.js";
-import { multiply } from "./sparse.js";
 
 /** How far a solve goes; what it leaves is an error of the space. */
 const goal = { relative: 1e-12, most: 2000 };
+/** A solve that came so far has done all that rounding lets it. */
+const enough = 1e-11;
 
-/** Solves (shift - A) x = b for rows of rates, the unknowns that hold nothing following: BiCGStab behind incomplete LU. */
+/** Solves (shift - A) x = b for rows of rates, the unknowns that hold nothing following: BiCGStab behind incomplete LU in flow order. */
 export interface ShiftedSolver {
-  /** x is where to begin and becomes the solution; b is 0 for unknowns that hold nothing. False where it did not get there. */
+  /** b by state, 1/s times x; x by unknown. False where it did not get there. */
   solve(b: Float64Array, x: Float64Array): boolean;
   /** Products with the matrix so far. */
   readonly products: number;
 }
 
-/** @returns undefined where a pivot vanishes */
+/**
+ * @param shift above 0, 1/s
+ * @returns undefined where a pivot vanishes
+ */
 export function shiftedSolver(rows: MixedRows, shift: number): ShiftedSolver | undefined {
-  const { size, states, start, column } = rows;
-  // Every row needs its diagonal; those of unknowns that hold nothing lack it.
-  const begin = new Int32Array(size + 1);
-  for (let i = 0; i < size; i++) begin[i + 1] = begin[i] + start[i + 1] - start[i] + (i < states ? 0 : 1);
-  const columns = new Int32Array(begin[size]);
-  const value = new Float64Array(begin[size]);
-  for (let i = 0, at = 0; i < size; i++) {
-    let placed = i < states;
-    for (let e = start[i]; e <= start[i + 1]; e++) {
-      if (!placed && (e === start[i + 1] || column[e] > i)) {
-        columns[at] = i;
-        value[at++] = 1;
-        placed = true;
-      }
-      if (e === start[i + 1]) break;
-      columns[at] = column[e];
-      value[at++] = (column[e] === i ? shift : 0) - rows.value[e];
+  const { size, states, start, column, value } = rows;
+  // Every row over its diagonal: what is left is what neighbours bring.
+  const diagonal = new Float64Array(size).fill(1);
+  for (let i = 0; i < states; i++) {
+    diagonal[i] = shift;
+    for (let e = start[i]; e < start[i + 1]; e++) if (column[e] === i) diagonal[i] -= value[e];
+  }
+  const [from, to] = [new Int32Array(start[size]), new Int32Array(start[size])];
+  const share = new Float64Array(start[size]);
+  let links = 0;
+  for (let i = 0; i < size; i++) {
+    for (let e = start[i]; e < start[i + 1]; e++) {
+      if (column[e] === i && i < states) continue;
+      from[links] = column[e];
+      to[links] = i;
+      share[links++] = value[e] / diagonal[i];
     }
   }
-  const matrix = { size, start: begin, column: columns, value };
-  const preconditioner = incompleteLu(matrix);
-  if (!preconditioner.take(value)) return undefined;
-  const method: IterativeMethod = bicgstab({ size, multiply: (x, y) => multiply(matrix, x, y), preconditioner });
+  const graph = { size, from: from.subarray(0, links), to: to.subarray(0, links) };
+  const placed = flowRows(graph, share.subarray(0, links));
+  const blocks = new FlowBlocks(placed, 1);
+  for (let p = 0; p < size; p++) blocks.diagonal[p] = 1 - placed.own[p];
+  if (!blocks.factor()) return undefined;
+  const { order } = placed;
+  const [right, found] = [new Float64Array(size), new Float64Array(size)];
   let products = 0;
   return {
     solve(b, x) {
-      x.set(b);
-      preconditioner.apply(x);
-      const done = method(b, x, goal);
-      products += done.products;
-      return done.reached || done.residual < 1e-11;
+      for (let p = 0; p < size; p++) right[p] = order[p] < states ? b[order[p]] / diagonal[order[p]] : 0;
+      const solved = blocks.solve(right, found, goal);
+      products += solved.products;
+      for (let p = 0; p < size; p++) x[order[p]] = found[p];
+      return solved.residual < enough;
     },
     get products() {
       return products;

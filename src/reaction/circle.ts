@@ -124,9 +124,9 @@ class CircleState implements System {
   step(y: Float64Array, f: Float64Array, rate: number, relative: number, out: Float64Array): boolean {
     for (let p = 0; p < this.rows.size; p++) if (!this.linearize(p, y, rate)) return false;
     if (!this.blocks.factor()) return false;
-    const reached = this.blocks.solve(f, out, relative, mostSteps);
+    const { residual } = this.blocks.solve(f, out, { relative, most: mostSteps, rough: true });
     // A step that is not quite what was asked may still be a good one: the residual decides.
-    return reached < 0.9 && Number.isFinite(out[0]);
+    return residual < 0.9 && Number.isFinite(out[0]);
   }
 
   /** What the balance at a place misses. */

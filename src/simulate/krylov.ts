@@ -24,7 +24,7 @@ function response(
   watch: WatchTracing = () => false,
 ): CellsResponse {
   const span = horizon > 0 ? horizon : 1;
-  const space = new ShiftSpace(rows, shiftTimesSpan / span, start, weight);
+  const space = new ShiftSpace(rows, shiftTimesSpan / span, start, weight, most + 1);
   const probes = [1 / 50, 1 / 20, 1 / 8, 1 / 4, 1 / 2, 1].map((part) => part * span);
   let before: number[] | undefined;
   for (let wanted = first; ; wanted += more) {

@@ -33,7 +33,7 @@ describe("the space of a shifted solve", () => {
     const column = (k: number) => entries.map((e) => e[k]);
     const rows: MixedRows = { ...gatherRows(n, column(0), column(1), column(2)), states: n };
     const start = Float64Array.from({ length: n }, () => random());
-    const space = new ShiftSpace(rows, 2, start, new Float64Array(n).fill(1));
+    const space = new ShiftSpace(rows, 2, start, new Float64Array(n).fill(1), n + 1);
     while (space.grow());
     expect(space.failed).toBe(false);
     expect(space.order).toBe(n);
