@@ -38,12 +38,24 @@ export function checkDuty(network: Network, duty: Duty, report: Report): void {
   }
   const bodies = network.compartments.map((c) => c.name);
   const places = [...bodies, ...network.groups.map((g) => g.name), ...network.compartments.flatMap(membersOf)];
-  for (const [name, { at }] of duty.local ?? []) look(name, at, "compartment", places);
+  const held = [...(duty.local ?? [])].map(([name, { at }]) => ({ key: "local", name, at }));
+  const jackets = [...(duty.heat?.jackets ?? [])].map(([name, { at }]) => ({ key: "heat", name, at }));
+  for (const { key, name, at } of [...held, ...jackets]) {
+    if (look(name, at, "compartment", places)) somethingFlows(network, key, name, at, report);
+  }
   checkSettings(network, duty, look, report);
   for (const { at, place, what } of duty.report) {
     if (at !== undefined && what === "tracer-time") look(at, place, "outlet", outlets);
     else if (at !== undefined) look(at, place, "outlet, compartment or feed", [...outlets, ...left, ...feeds]);
   }
+}
+
+/** Constants and jackets need a liquid that flows past them. */
+function somethingFlows(network: Network, key: string, name: string, at: Span, report: Report): void {
+  const body = network.compartments.find((c) => c.name === name);
+  if (!body || (body.kind.flows && (body.kind.keys.volume || body.zones))) return;
+  const why = body.kind.flows ? "holds no liquid" : "no flow reaches";
+  report("nothing-flows-there", at, { name, key, why });
 }
 
 function checkSettings(

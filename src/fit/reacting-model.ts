@@ -6,7 +6,7 @@ import { isClosed, type Network } from "../model/network.js";
 import type { Reacting, Trial } from "../model/trial.js";
 import type { Problem } from "../problems/problem.js";
 import { problem } from "../problems/report.js";
-import { constantsOf } from "../reaction/conditions.js";
+import { constantsOf } from "../reaction/constants.js";
 import { followFlask } from "../reaction/flask.js";
 import { steadyState } from "../reaction/steady.js";
 import type { ForwardModel, WantedTimes } from "./forward.js";

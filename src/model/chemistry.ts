@@ -16,6 +16,10 @@ export interface Chemistry {
   readonly temperatureSlot: number;
   /** True where a rate law or a constant asks for the temperature. */
   readonly needsTemperature: boolean;
+  /** True where what a reaction makes of a species follows the temperature. */
+  readonly makesFollowTemperature?: boolean;
+  /** Of the liquid, J/(m3 K); undefined where the file does not say. */
+  readonly heatCapacity?: Value | undefined;
   readonly reactions: readonly Reaction[];
   /**
    * Every way to give the species dimensions (molar, mass or number per volume) in which each rate is
@@ -29,6 +33,11 @@ export interface ChemicalConstant {
   readonly at: Span;
   /** An Arrhenius constant is an expression in `T`. */
   readonly value: Value;
+  /**
+   * d value / dT, 1/K times SI, with those of the other constants given by their index; undefined where the constant does not
+   * follow the temperature.
+   */
+  readonly warmed?: ((env: Env, others: ArrayLike<number>) => number) | undefined;
   /** Of a parameter: what a fit may do with it. */
   readonly free?: Freedom;
 }
@@ -59,6 +68,10 @@ export interface Reaction {
   rate(env: Env): number;
   /** d rate / d concentration of each species, same Env; writes into `out` (length: species), no allocation. */
   gradient(env: Env, out: Float64Array): void;
+  /** d rate / dT, with those of the constants given by their index; undefined where the rate does not follow the temperature. */
+  readonly warmed?: ((env: Env, constants: ArrayLike<number>) => number) | undefined;
+  /** Heat of one unit of reaction, J, negative where it is set free; undefined where the file does not say. Needs constants only. */
+  readonly heat?: Value | undefined;
 }
 
 export interface Made {

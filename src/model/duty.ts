@@ -23,6 +23,8 @@ export interface Duty {
   readonly contents?: DutyContents | undefined;
   /** K, everywhere (isothermal). */
   readonly temperature: Value | undefined;
+  /** Heat balances in place of one temperature; every feed then has its own. */
+  readonly heat?: HeatDuty | undefined;
   /** Dimension of the concentration of each species of the chemistry. */
   readonly concentrations: readonly Dimension[];
   readonly report: readonly Reported[];
@@ -36,6 +38,8 @@ export interface Placed {
 
 export interface DutyFeed {
   readonly at: Span;
+  /** K. */
+  readonly temperature?: Value | undefined;
   /** Of one that changes in time, what it is before. */
   readonly species: ReadonlyMap<string, Placed>;
   /** Those that change in time. */
@@ -67,6 +71,21 @@ export interface LocalDuty {
   readonly constants: ReadonlyMap<string, Placed>;
 }
 
+/** Where heat goes: everything is adiabatic but what has a jacket. */
+export interface HeatDuty {
+  readonly at: Span;
+  /** By the name of a compartment, a member of one or a part. */
+  readonly jackets: ReadonlyMap<string, Jacket>;
+}
+
+export interface Jacket {
+  readonly at: Span;
+  /** K, the same along the whole body. */
+  readonly temperature: Value;
+  /** Coefficient times area, W/K, spread over the volume of what the jacket surrounds. */
+  readonly conductance: Value;
+}
+
 /** A figure that a duty asks for. `at` undefined: over all outlets together. */
 export interface Reported {
   readonly text: string;
@@ -77,9 +96,10 @@ export interface Reported {
     | "selectivity"
     | "log-removal"
     | "concentration"
+    | "temperature"
     | "tracer-time"
     | "time-beyond";
-  /** The species; empty for tracer-time. */
+  /** The species; empty for temperature and tracer-time. */
   readonly of: string;
   /** `yield of P from A`, `selectivity of P over S`: the second species. */
   readonly versus: string | undefined;

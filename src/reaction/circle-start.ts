@@ -65,5 +65,6 @@ export function startOf({ outside, excess, inflow, tau }: Circle, { cell }: Reac
   for (let i = 0; i < n; i++) entering[i] /= fed;
   const tank = entering.slice();
   const settled = settleMixed(cell, entering, volume / fed, tank);
-  return tank.map((c, i) => (settled && c > 0 && entering[i] > 0 ? Math.min(c / entering[i], 1) : 1));
+  const most = (i: number): number => (cell.thermal && i === n - 1 ? Number.POSITIVE_INFINITY : 1);
+  return tank.map((c, i) => (settled && c > 0 && entering[i] > 0 ? Math.min(c / entering[i], most(i)) : 1));
 }

@@ -2,11 +2,13 @@ import type { Plant } from "../compile/plant.js";
 import type { Chemistry } from "../model/chemistry.js";
 import type { Duty } from "../model/duty.js";
 import { type Dimension, dimensions } from "../units/dimension.js";
+import { constantsOf, type DutySettings } from "./constants.js";
+import { behindWall, type Wall, wallsOf } from "./jacket.js";
 import { bindKinetics, type Reactions } from "./kinetics.js";
 import { placesByNode } from "./places.js";
+import { heatName, thermalOf } from "./thermal.js";
 
-/** Values to use in place of a duty's, SI, by name: `k1`, `feed.A`, `bulk.k1` (local), `temperature`. Unknown names have no effect. */
-export type DutySettings = Readonly<Record<string, number>>;
+export { constantsOf, type DutySettings } from "./constants.js";
 
 /** A duty in numbers: what each feed of a plant brings, and the kinetics at its constants and temperature. */
 export interface Conditions {
@@ -23,6 +25,12 @@ export interface Conditions {
   reactionsAt(node: number): Reactions;
   /** True where that differs from node to node. */
   readonly varied: boolean;
+  /** Where heat is balanced: the temperature, K, is then the last component of every mixture. */
+  readonly heat?: {
+    /** J/(m3 K). */
+    readonly capacity: number;
+    wallAt(node: number): Wall | undefined;
+  };
   /** What one unit of each reaction makes, anywhere in the plant, scaled: what none of them changes only mixes. */
   readonly numbers: readonly Float64Array[];
 }
@@ -44,62 +52,51 @@ export function conditionsOf(
   settings: DutySettings = {},
 ): Conditions {
   const species = chemistry ? chemistry.species.map((s) => s.name) : fedSpecies(duty);
-  const feeds = plant.feeds.map(({ name }) =>
-    Float64Array.from(
-      species,
-      (s) => settings[`${name}.${s}`] ?? duty.feeds.get(name)?.species.get(s)?.value.of([]) ?? 0,
-    ),
-  );
+  const heat = chemistry && duty.heat ? { chemistry, capacity: heatCapacityOf(chemistry, settings) } : undefined;
+  const feeds = plant.feeds.map(({ name }) => {
+    const feed = duty.feeds.get(name);
+    const brought = species.map((s) => settings[`${name}.${s}`] ?? feed?.species.get(s)?.value.of([]) ?? 0);
+    const warm = settings[`${name}.temperature`] ?? feed?.temperature?.of([]) ?? Number.NaN;
+    return Float64Array.from(heat ? [...brought, warm] : brought);
+  });
   const scale = scales([...feeds, ...otherLevels(duty, species)], species.length, duty.concentrations);
   const reacting = chemistry ?? { species, reactions: [] };
   const reactionsWith = (places: readonly string[]): Reactions => {
     const constants = chemistry ? constantsOf(chemistry, duty, settings, places) : [];
-    const cell = bindKinetics(reacting, constants, scale, "limited");
-    return { cell, tube: bindKinetics(reacting, constants, scale, "cut"), pocket: cell };
+    const thermal = heat && thermalOf(heat.chemistry, duty, settings, heat.capacity);
+    const cell = bindKinetics(reacting, constants, scale, "limited", thermal);
+    return { cell, tube: bindKinetics(reacting, constants, scale, "cut", thermal), pocket: cell };
   };
   const reactions = reactionsWith([]);
-  const placed = placesByNode(plant, [...(duty.local?.keys() ?? [])]);
-  const own = new Map([...new Set(placed.values())].map((places) => [places, reactionsWith(places)]));
+  const placed = placesByNode(plant, [
+    ...new Set([...(duty.local?.keys() ?? []), ...(duty.heat?.jackets.keys() ?? [])]),
+  ]);
+  const wallAt = wallsOf(plant, duty, settings, placed);
+  const bare = new Map([...new Set(placed.values())].map((places) => [places, reactionsWith(places)]));
+  const walled = new Map<Reactions, Reactions>();
+  const own = new Map<number, Reactions>();
+  for (const [node, places] of placed) {
+    const here = bare.get(places) ?? reactions;
+    const wall = wallAt(node);
+    if (wall && heat) walled.set(here, walled.get(here) ?? behindWall(here, wall, heat.capacity));
+    own.set(node, (wall && walled.get(here)) ?? here);
+  }
   return {
     species,
-    size: species.length,
+    size: scale.length,
     feeds,
     scale,
     reactions,
-    reactionsAt: (node) => own.get(placed.get(node) ?? []) ?? reactions,
+    reactionsAt: (node) => own.get(node) ?? reactions,
     varied: own.size > 0,
-    numbers: [reactions, ...own.values()].flatMap(({ cell }) => cell.numbers),
+    numbers: [...new Set([reactions, ...own.values()])].flatMap(({ cell }) => cell.numbers),
+    ...(heat ? { heat: { capacity: heat.capacity, wallAt } } : {}),
   };
 }
 
-/**
- * Constants of a chemistry at a duty, then the temperature: the tail of an Env. SI.
- * @param places names under the duty's `local:` whose constants hold, later ones before earlier ones
- */
-export function constantsOf(
-  chemistry: Chemistry,
-  duty: Duty,
-  settings: DutySettings = {},
-  places: readonly string[] = [],
-): Float64Array {
-  const n = chemistry.species.length;
-  const env = new Float64Array(chemistry.temperatureSlot + 1);
-  const local = new Map(
-    places.flatMap((place) =>
-      [...(duty.local?.get(place)?.constants ?? [])].map(([name, { value }]) => [
-        name,
-        settings[`${place}.${name}`] ?? value.of([]),
-      ]),
-    ),
-  );
-  // Only a chemistry that does not ask for the temperature may be without one.
-  env[chemistry.temperatureSlot] = settings.temperature ?? duty.temperature?.of([]) ?? Number.NaN;
-  for (const k of chemistry.order) {
-    const { name, value } = chemistry.constants[k];
-    env[n + k] = local.get(name) ?? settings[name] ?? duty.with.get(name)?.value.of([]) ?? value.of(env);
-  }
-  return env.slice(n);
-}
+/** Heat capacity of the liquid, J/(m3 K). */
+const heatCapacityOf = ({ heatCapacity }: Chemistry, settings: DutySettings): number =>
+  settings["heat-capacity"] ?? heatCapacity?.of([]) ?? Number.NaN;
 
 /** Everything that the duty and its chemistry declare with a `±`. */
 export function dutyInputs(chemistry: Chemistry | undefined, duty: Duty): DutyInput[] {
@@ -108,13 +105,10 @@ export function dutyInputs(chemistry: Chemistry | undefined, duty: Duty): DutyIn
     if (sd !== undefined && sd > 0) inputs.push({ name, value, sd });
   };
   if (chemistry) {
-    const n = chemistry.species.length;
-    const env = new Float64Array(chemistry.temperatureSlot + 1);
-    const numbers = constantsOf(chemistry, duty);
-    env.set(numbers, n);
+    const env = envAt(chemistry, duty);
     chemistry.constants.forEach(({ name, value }, k) => {
       const otherwise = duty.with.get(name)?.value;
-      add(name, numbers[k], (otherwise ?? value).sd?.(otherwise ? [] : env));
+      add(name, env[chemistry.species.length + k], (otherwise ?? value).sd?.(otherwise ? [] : env));
     });
   }
   for (const [feed, { value }] of duty.flows) add(`${feed}.flow`, value.of([]), value.sd?.([]));
@@ -124,6 +118,20 @@ export function dutyInputs(chemistry: Chemistry | undefined, duty: Duty): DutyIn
   }
   for (const [place, { constants }] of duty.local ?? []) {
     for (const [name, { value }] of constants) add(`${place}.${name}`, value.of([]), value.sd?.([]));
+  }
+  for (const [place, { temperature, conductance }] of duty.heat?.jackets ?? []) {
+    add(`${place}.jacket`, temperature.of([]), temperature.sd?.([]));
+    add(`${place}.conductance`, conductance.of([]), conductance.sd?.([]));
+  }
+  if (duty.heat && chemistry) {
+    add("heat-capacity", heatCapacityOf(chemistry, {}), chemistry.heatCapacity?.sd?.([]));
+    const env = envAt(chemistry, duty);
+    for (const { text, heat } of chemistry.reactions) {
+      if (heat) add(heatName(text), heat.of(env), heat.sd?.(env));
+    }
+    for (const [feed, { temperature }] of duty.feeds) {
+      if (temperature) add(`${feed}.temperature`, temperature.of([]), temperature.sd?.([]));
+    }
   }
   if (duty.temperature) add("temperature", duty.temperature.of([]), duty.temperature.sd?.([]));
   return inputs;
@@ -147,16 +155,24 @@ function otherLevels(duty: Duty, species: readonly string[]): Float64Array[] {
   return [...held, ...courses];
 }
 
-/** Each species by its own largest feed; one that is not fed by the largest of those that are counted as it is. */
+/** An Env without species at a duty's constants. */
+function envAt(chemistry: Chemistry, duty: Duty): Float64Array {
+  const env = new Float64Array(chemistry.temperatureSlot + 1);
+  env.set(constantsOf(chemistry, duty), chemistry.species.length);
+  return env;
+}
+
+/** Each component by its own largest feed; a species that is not fed by the largest of those that are counted as it is. */
 function scales(feeds: readonly Float64Array[], n: number, kinds: readonly Dimension[]): Float64Array {
-  const own = Float64Array.from({ length: n }, (_, i) => Math.max(0, ...feeds.map((feed) => feed[i])));
+  const whole = feeds[0]?.length ?? n;
+  const own = Float64Array.from({ length: whole }, (_, i) => Math.max(0, ...feeds.map((feed) => feed[i] ?? 0)));
   const alike = (i: number, j: number): boolean => {
     const [a, b] = [kinds[i] ?? dimensions.ratio, kinds[j] ?? dimensions.ratio];
     return a.every((x, d) => x === b[d]);
   };
   return own.map((largest, i) => {
     if (largest > 0) return largest;
-    const kin = Math.max(0, ...own.filter((_, j) => alike(i, j)));
+    const kin = Math.max(0, ...own.filter((_, j) => j < n && alike(i, j)));
     return kin > 0 ? kin : 1;
   });
 }

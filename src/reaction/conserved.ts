@@ -12,27 +12,31 @@ export interface Conserved {
 /**
  * Reduces stoichiometric numbers to their row space by elimination with full pivoting, reactants before products: what runs
  * out is then kept to its own digits.
- * @param numbers one row per reaction, one column per species, in the measure of the concentrations to be followed
+ * @param numbers one row per reaction, one column per component, in the measure of the concentrations to be followed
+ * @param species components that come before others; a temperature behind them follows from them where it can
  */
-export function conservedBy(numbers: readonly Float64Array[], species: number): Conserved {
+export function conservedBy(numbers: readonly Float64Array[], size: number, species = size): Conserved {
   const rows = numbers.map((row) => row.slice());
-  const consumed = Uint8Array.from({ length: species }, (_, i) => (rows.some((row) => row[i] < 0) ? 1 : 0));
+  const consumed = Uint8Array.from({ length: size }, (_, i) => (i < species && rows.some((row) => row[i] < 0) ? 1 : 0));
   const largest = rows.reduce((most, row) => row.reduce((m, x) => Math.max(m, Math.abs(x)), most), 0);
   const free: number[] = [];
   for (let rank = 0; rank < rows.length; rank++) {
     const pivot = pivotOf(rows, rank, (i) => !free.includes(i) && consumed[i] === 1, 1e-9 * largest);
-    const found = pivot ?? pivotOf(rows, rank, (i) => !free.includes(i), 1e-9 * largest);
+    const found =
+      pivot ??
+      pivotOf(rows, rank, (i) => !free.includes(i) && i < species, 1e-9 * largest) ??
+      pivotOf(rows, rank, (i) => !free.includes(i), 1e-9 * largest);
     if (!found) break;
     [rows[rank], rows[found.row]] = [rows[found.row], rows[rank]];
     const head = rows[rank][found.column];
     rows[rank] = rows[rank].map((x) => x / head);
     rows.forEach((row, r) => {
       const factor = row[found.column];
-      if (r !== rank && factor !== 0) for (let i = 0; i < species; i++) row[i] -= factor * rows[rank][i];
+      if (r !== rank && factor !== 0) for (let i = 0; i < size; i++) row[i] -= factor * rows[rank][i];
     });
     free.push(found.column);
   }
-  const dependent = Array.from({ length: species }, (_, i) => i).filter((i) => !free.includes(i));
+  const dependent = Array.from({ length: size }, (_, i) => i).filter((i) => !free.includes(i));
   const follows = new Float64Array(dependent.length * free.length);
   dependent.forEach((d, j) => {
     for (let k = 0; k < free.length; k++) {

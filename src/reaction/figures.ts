@@ -7,7 +7,7 @@ import { siUnit } from "../units/describe.js";
 import { type Dimension, dimensions, sameDimension } from "../units/dimension.js";
 import { parseUnit } from "../units/parse.js";
 import { one, type Unit } from "../units/unit.js";
-import { constantsOf, type DutySettings } from "./conditions.js";
+import { constantsOf, type DutySettings } from "./constants.js";
 import type { SteadyState } from "./steady.js";
 
 /** A figure that a duty asks for. */
@@ -37,9 +37,25 @@ export function figuresOf(plant: Plant, duty: Duty, state: SteadyState, settings
       const value = untraceable(plant).length > 0 ? Number.NaN : exitTime(plant, line.at, (line.percent ?? 0) / 100);
       return figure(line, value, plant.network.units.time, "not-estimable");
     }
+    if (line.what === "temperature") {
+      const node = plant.exit.get(line.at ?? "");
+      const held = settings.temperature ?? duty.temperature?.of([]);
+      const value = held ?? (node === undefined ? undefined : state.temperatures?.[node]) ?? Number.NaN;
+      return figure(line, value, temperatureUnit(duty));
+    }
     return speciesFigure(duty, state.species, line, streamsFor(plant, state, line), settings);
   });
 }
+
+/** The unit that a duty gives a temperature in, first its own. */
+export function temperatureUnit(duty: Duty): Unit {
+  const fed = [...duty.feeds.values()].map((f) => f.temperature);
+  const jackets = [...(duty.heat?.jackets.values() ?? [])].map((j) => j.temperature);
+  const written = [duty.temperature, ...fed, ...jackets].find((t) => t?.unit !== undefined);
+  return written?.unit ?? kelvin;
+}
+
+const kelvin: Unit = { name: "K", factor: 1, offset: 0, dimension: dimensions.temperature };
 
 /** One figure of a species from what went in and came out. */
 export function speciesFigure(

@@ -6,13 +6,14 @@ import type { Env } from "../model/value.js";
  * species. The arrays are the caller's; nothing is allocated by a call.
  */
 export interface Kinetics {
-  /** Number of species. */
+  /** Components of a mixture: the species and, where heat is balanced, the temperature after them. */
   readonly size: number;
+  readonly thermal: boolean;
   /** True where a law asks for more when a reactant has run out (zero order). */
   readonly endures: boolean;
-  /** Concentration (SI) of y = 1, per species. */
+  /** Concentration (SI) of y = 1, per species; kelvins, of the temperature. */
   readonly scale: Float64Array;
-  /** What one unit of each reaction makes of each species, scaled. */
+  /** What one unit of each reaction makes of each component, scaled. */
   readonly numbers: readonly Float64Array[];
   /** Writes what reaction makes per second, scaled, at y[at ...] into out[to ...]. */
   production(y: ArrayLike<number>, at: number, out: Float64Array, to: number): void;
@@ -35,6 +36,18 @@ const depleted = 1e-12;
 /** Scaled concentration at which derivatives are taken where it is zero: half-order laws are infinitely steep there. */
 const nearlyNone = 1e-14;
 
+/** How rates follow a temperature that is part of the state, and how reactions move it. */
+export interface Thermal {
+  /** K by which one unit of each reaction per m3 warms the liquid. */
+  readonly rise: Float64Array;
+  /** Works out in an Env what follows its temperature. */
+  settle(env: Float64Array): void;
+  /** Works out how that leans on the temperature: before `warmed`. */
+  lean(env: Float64Array): void;
+  /** d rate / dT of a reaction. */
+  warmed(reaction: number, env: Float64Array): number;
+}
+
 /** What kinetics need of a chemistry. */
 export interface Laws {
   readonly species: { readonly length: number };
@@ -44,7 +57,7 @@ export interface Laws {
 /**
  * Binds rate laws to their constants.
  * @param constants values of the constants and then of the temperature, SI, in slot order after the species
- * @param scale concentration (SI) that counts as 1, per species, above zero
+ * @param scale what counts as 1, per component (SI), above zero
  * @param depletion what a law does that still asks for a reactant when that has run out: "limited" ramps it down (in mixed
  *   cells); "cut" lets it run on below zero and stops it at exactly zero, for a solver that finds the moment (along a tube,
  *   where a ramp would be stiff)
@@ -54,14 +67,22 @@ export function bindKinetics(
   constants: ArrayLike<number>,
   scale: Float64Array,
   depletion: "limited" | "cut",
+  thermal?: Thermal,
 ): Kinetics {
-  const n = chemistry.species.length;
-  const env = new Float64Array(n + constants.length);
-  for (let k = 0; k < constants.length; k++) env[n + k] = constants[k];
-  const reactions = chemistry.reactions.map((reaction) => {
+  const species = chemistry.species.length;
+  const n = thermal ? species + 1 : species;
+  const env = new Float64Array(species + constants.length);
+  for (let k = 0; k < constants.length; k++) env[species + k] = constants[k];
+  const temperature = env.length - 1;
+  if (thermal) {
+    env[temperature] = scale[species];
+    thermal.settle(env);
+  }
+  const reactions = chemistry.reactions.map((reaction, k) => {
     const numbers = new Float64Array(n);
     for (const made of reaction.makes) numbers[made.species] += made.number(env);
-    const persists = persistence(reaction.rate, env, scale, numbers);
+    const persists = persistence(reaction.rate, env, scale, numbers.subarray(0, species));
+    if (thermal) numbers[species] = thermal.rise[k];
     const moved = Int32Array.from([...numbers.keys()].filter((i) => numbers[i] !== 0));
     const scaled = Float64Array.from(moved, (i) => numbers[i] / scale[i]);
     return { reaction, numbers, persists, helped: persists.includes(1), moved, scaled };
@@ -70,13 +91,17 @@ export function bindKinetics(
 
   /** Puts the state into the environment; negative concentrations count as none. */
   const load = (y: ArrayLike<number>, at: number, least: number): void => {
-    for (let i = 0; i < n; i++) env[i] = Math.max(y[at + i], least) * scale[i];
+    for (let i = 0; i < species; i++) env[i] = Math.max(y[at + i], least) * scale[i];
+    if (!thermal) return;
+    env[temperature] = y[at + species] * scale[species];
+    thermal.settle(env);
   };
 
   const limited = depletion === "limited";
 
   return {
     size: n,
+    thermal: thermal !== undefined,
     endures: reactions.some(({ persists }) => persists.includes(1)),
     scale,
     numbers: reactions.map(({ numbers }) => numbers.map((x, i) => x / scale[i])),
@@ -93,9 +118,11 @@ export function bindKinetics(
     jacobian(y, at, out, to) {
       out.fill(0, to, to + n * n);
       load(y, at, nearlyNone);
+      thermal?.lean(env);
       for (let k = 0; k < reactions.length; k++) {
         const { reaction, numbers, persists, helped, moved, scaled } = reactions[k];
         reaction.gradient(env, slope);
+        if (thermal) slope[species] = thermal.warmed(k, env);
         const rate = helped ? reaction.rate(env) : 0;
         const share = helped ? supply(y, at, rate, numbers, persists, limited) : 1;
         for (let j = 0; j < n; j++) {
@@ -125,7 +152,7 @@ function supply(
   limited: boolean,
 ): number {
   let share = 1;
-  for (let i = 0; i < numbers.length; i++) {
+  for (let i = 0; i < persists.length; i++) {
     if (!persists[i] || !consumes(rate, numbers[i])) continue;
     if (limited) share = Math.min(share, Math.max(y[at + i], 0) / depleted);
     else if (y[at + i] === 0) share = 0;
@@ -143,7 +170,7 @@ function persistence(
   const marks = new Uint8Array(numbers.length);
   for (let i = 0; i < numbers.length; i++) {
     if (numbers[i] === 0) continue;
-    env.set(scale);
+    env.set(scale.subarray(0, numbers.length));
     env[i] = 0;
     const asked = rate(env);
     if (Number.isFinite(asked) && consumes(asked, numbers[i])) marks[i] = 1;

@@ -6,7 +6,7 @@ import { type MixingBounds, mixingBounds, positionBetween } from "./bounds.js";
 import { conditionsOf, type DutySettings } from "./conditions.js";
 import { exitAge } from "./exit-age.js";
 import { type Figure, figuresOf, meanFeed, speciesFigure } from "./figures.js";
-import { noCurve, type Premises, unknownPremises, unlikeBodies } from "./premises.js";
+import { noCurve, type Premises, unknownPremises, unlikeBodies, warmPremises } from "./premises.js";
 import { type SteadyState, steadyState } from "./steady.js";
 import type { SteadyProgress } from "./walk.js";
 
@@ -47,6 +47,7 @@ export function predict(
   if (!chemistry || chemistry.reactions.length === 0) {
     return { state, figures, bounds: figures.map(() => undefined), premises: undefined };
   }
+  if (duty.heat) return { state, figures, bounds: figures.map(() => undefined), premises: warmPremises };
   if (plant.columns.size > mostBounded || untraceable(plant).length > 0) {
     return { state, figures, bounds: figures.map(() => undefined), premises: figures.length > 0 ? noCurve : undefined };
   }
@@ -61,7 +62,7 @@ export function predict(
   let asked = false;
   const bounds = duty.report.map((line, k): FigureBounds | undefined => {
     const isOutlet = line.at === undefined || plant.outlets.some((o) => o.name === line.at && o.flow > 0);
-    if (line.what === "tracer-time" || !isOutlet) return undefined;
+    if (line.what === "tracer-time" || line.what === "temperature" || !isOutlet) return undefined;
     asked = true;
     const found = boundsAt(line.at);
     if (!found) return undefined;

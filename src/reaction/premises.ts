@@ -25,6 +25,13 @@ export const noCurve: Premises = {
   says: "The bounds were not computed: the network has more cells than their exit-age curve is worked out for.",
 };
 
+/** Where heat is balanced. */
+export const warmPremises: Premises = {
+  bound: "no",
+  rate: "not checked",
+  says: "The bounds were not computed: with heat of reaction a rate may rise as reactants are used up, so what the curve alone allows does not bound the vessel.",
+};
+
 /** Where bodies have kinetics of their own. */
 export const unlikeBodies: Premises = {
   bound: "no",

@@ -50,7 +50,7 @@ export class Walk {
     this.inflow = columns.inflow;
     this.into = adjacency(columns.size, to);
     this.fed = new Float64Array(columns.size * n);
-    this.conserved = conservedBy(conditions.numbers, n);
+    this.conserved = conservedBy(conditions.numbers, n, conditions.species.length);
     this.place = new Int32Array(columns.size).fill(-1);
     feeds.forEach((feed, k) => {
       for (let i = 0; i < n; i++) {

@@ -20,6 +20,7 @@ export function alongWay(
   const beside = pockets && pocketed(reactions.pocket, pockets, flow);
   return {
     size: n,
+    thermal: inFlow.thermal,
     endures: inFlow.endures,
     scale: inFlow.scale,
     numbers: inFlow.numbers,

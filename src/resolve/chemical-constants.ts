@@ -12,6 +12,7 @@ import { one } from "../units/unit.js";
 import { checkName } from "./check-name.js";
 import { dependencyOrder } from "./dependency-order.js";
 import { emptyScope, resolveTemperature, resolveValue, type Scope, writtenValue } from "./value.js";
+import { warmedConstants } from "./warmed.js";
 
 /** R, J/(mol K). */
 const gasConstant = knownConstants.get("gas-constant")?.value ?? Number.NaN;
@@ -75,7 +76,9 @@ export function resolveConstants(
     const freedom = free.includes(entry) ? freedomOf(entry, value, report) : undefined;
     return [{ name: key.text, at: key.at, value, ...(freedom ? { free: freedom } : {}) }];
   });
-  return { constants, order: whole ? order : [], dimensions: found, whole };
+  const warm = whole ? warmedConstants(constants, order, (name) => scope.slot(name)) : [];
+  const known = constants.map((c, i) => ({ ...c, warmed: warm[i] }));
+  return { constants: known, order: whole ? order : [], dimensions: found, whole };
 }
 
 const at = (i: number | undefined, shift: number): number | undefined => (i === undefined ? undefined : i + shift);
@@ -118,7 +121,7 @@ function boundsHold(
 
 /** Names that a constant is made of; its own problems are told when it is resolved. */
 function needs(node: Tree): readonly string[] {
-  const parts = node.type === "map" ? ["value", "at", "activation"].map((key) => child(node, key)) : [node];
+  const parts = node.type === "map" ? ["value", "at", "activation", "heat"].map((key) => child(node, key)) : [node];
   const silent = collector().report;
   return parts.flatMap((part) => {
     const written = part && writtenValue(part, silent);
@@ -134,10 +137,20 @@ function resolveConstant(
 ): Value | undefined {
   if (node.type !== "map") return resolveValue(node, "any", scope, report);
   const value = resolveValue(child(node, "value"), "any", scope, report);
-  const [atNode, activationNode] = [child(node, "at"), child(node, "activation")];
+  // Arrhenius's law for a rate and van 't Hoff's for an equilibrium are one formula, in E and in the heat of reaction.
+  const [atNode, heatNode] = [child(node, "at"), child(node, "heat")];
+  const activationNode = child(node, "activation") ?? heatNode;
   if (!atNode && !activationNode) return value;
+  if (heatNode && activationNode !== heatNode) {
+    report("not-here", heatNode.at, {
+      says: `constant '${key.text}' has both \`activation\` and \`heat\`, which say the same of a rate and of an equilibrium`,
+      fix: "keep `activation` for a rate constant, `heat` for an equilibrium constant",
+    });
+    return undefined;
+  }
   if (!atNode || !activationNode) {
-    const [has, lacks] = atNode ? ["at", "activation"] : ["activation", "at"];
+    const energy = heatNode ? "heat" : "activation";
+    const [has, lacks] = atNode ? ["at", energy] : [energy, "at"];
     report("arrhenius-half", key.at, { name: key.text, has, lacks });
     return undefined;
   }

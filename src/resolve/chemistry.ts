@@ -9,10 +9,12 @@ import { type Dimension, dimensions } from "../units/dimension.js";
 import { findBases } from "./bases.js";
 import { checkName } from "./check-name.js";
 import { type ChemicalConstants, resolveConstants } from "./chemical-constants.js";
+import { heatsHold, resolveMedium, withHeats } from "./heats.js";
 import { explainRates } from "./rate-dimension.js";
 import { resolveReaction, type WrittenReaction } from "./reaction.js";
 import { aboveZero } from "./sign.js";
 import { bindValue, emptyScope, reportFault, resolveValue, type Scope } from "./value.js";
+import { withTemperature } from "./warmed.js";
 
 /**
  * Binds a chemistry: species and constants to slots, rate laws and their exact derivatives to closures, and finds in which
@@ -35,13 +37,18 @@ export function resolveChemistry(tree: MapNode, path: string, report: Report): C
   });
   if (!constants.whole || written.length < nodes.length || species.length < declared.length) return undefined;
 
+  const warm = constants.constants.filter((c) => c.warmed).map((c) => c.name);
+  const heatCapacity = resolveMedium(child(tree, "medium"), report);
+  if (!heatsHold(written, warm, report) || heatCapacity === "faulty") return undefined;
   const laws = written.map(({ rate, makes }) => ({ rate, changes: makes.map((m) => m.species) }));
   const others = (name: string): Dimension | undefined => scope.dimension(name);
-  const bases = findBases(names, laws, others);
-  if (bases.length === 0) {
+  const ways = findBases(names, laws, others);
+  if (ways.length === 0) {
     explainRates(names, written, others, report);
     return undefined;
   }
+  const bases = withHeats(ways, written, report);
+  if (bases.length === 0) return undefined;
   unusedNames(species, constants, written, report);
   const temperatureSlot = names.length + constants.constants.length;
   const uses = [
@@ -58,7 +65,9 @@ export function resolveChemistry(tree: MapNode, path: string, report: Report): C
     order: constants.order,
     temperatureSlot,
     needsTemperature: uses.includes("T"),
-    reactions: written.map((w) => bindReaction(w, names, (name) => scope.slot(name))),
+    makesFollowTemperature: written.some(({ makesOf }) => makesOf.some((name) => name === "T" || warm.includes(name))),
+    heatCapacity,
+    reactions: written.map((w) => bindReaction(w, names, constants.constants, warm, (name) => scope.slot(name))),
     bases,
   };
 }
@@ -66,6 +75,10 @@ export function resolveChemistry(tree: MapNode, path: string, report: Report): C
 function resolveSpecies(node: Tree | undefined, report: Report): Species[] {
   return entriesOf(node).flatMap(({ key, value }): Species[] => {
     if (!checkName(key, report)) return [];
+    if (key.text === "temperature") {
+      report("name-taken", key.at, { name: key.text, by: "what a feed's temperature is called" });
+      return [];
+    }
     const written = child(value, "molar-mass");
     const molarMass = written && resolveValue(written, dimensions["molar mass"], emptyScope, report);
     if (written && !(molarMass && aboveZero(`the molar mass of '${key.text}'`, molarMass, false, report))) return [];
@@ -101,6 +114,8 @@ function scalesFit({ rate, rateNode }: WrittenReaction, scope: Scope, report: Re
 function bindReaction(
   w: WrittenReaction,
   species: readonly string[],
+  constants: ChemicalConstants["constants"],
+  warm: readonly string[],
   slotOf: (name: string) => number | undefined,
 ): Reaction {
   const used = namesIn(w.rate);
@@ -117,6 +132,8 @@ function bindReaction(
       out.fill(0);
       for (const { i, slope } of slopes) out[i] = slope(env);
     },
+    warmed: withTemperature(w.rate, warm, constants, slotOf),
+    heat: w.heat,
   };
 }
 

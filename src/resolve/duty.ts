@@ -1,11 +1,14 @@
 import type { Chemistry } from "../model/chemistry.js";
-import type { Duty, DutyFeed, LocalDuty, Placed } from "../model/duty.js";
+import type { Duty, DutyFeed, Placed } from "../model/duty.js";
+import { catalogue } from "../problems/catalogue.js";
 import type { Report } from "../problems/report.js";
 import { child, type Entry, entriesOf, itemsOf, type MapNode, type Tree, textOf } from "../read/tree.js";
 import { nearest } from "../text/nearest.js";
 import type { Span } from "../text/source.js";
 import { dimensions } from "../units/dimension.js";
 import { concentrationBases } from "./bases.js";
+import { feedTemperaturesUnused, heatFits, resolveHeat } from "./duty-heat.js";
+import { resolveLocal } from "./duty-local.js";
 import { massEquations, settleFeeds } from "./feed-basis.js";
 import { resolveReportLine } from "./report-line.js";
 import { aboveZero } from "./sign.js";
@@ -25,7 +28,7 @@ export interface DutyFiles {
 export function resolveDuty(tree: MapNode, path: string, files: DutyFiles, report: Report): Duty | undefined {
   let good = true;
   const tell: Report = (code, at, data, also) => {
-    if (code !== "mass-equation") good = false;
+    if (catalogue[code].severity === "error") good = false;
     report(code, at, data, also);
   };
   const chemistryNode = child(tree, "chemistry");
@@ -40,12 +43,17 @@ export function resolveDuty(tree: MapNode, path: string, files: DutyFiles, repor
   const at = title?.at ?? tree.at;
   const given = resolveWith(child(tree, "with"), chemistry, tell);
   const local = resolveLocal(child(tree, "local"), chemistry, tell);
-  const feeds = resolveFeeds(child(tree, "feeds"), chemistry, tell);
+  const feeds = resolveFeeds(child(tree, "feeds"), chemistry, tell, "feed", true);
   const species = chemistry ? chemistry.species.map((s) => s.name) : fedNames(feeds);
   const asked = itemsOf(child(tree, "report")).flatMap((item) =>
     item.type === "scalar" ? (resolveReportLine(item, species, tell) ?? []) : [],
   );
-  if (chemistry?.needsTemperature && !temperatureNode) {
+  const heatNode = child(tree, "heat");
+  const heat = heatNode && resolveHeat(heatNode, tell);
+  if (heatNode && temperatureNode) tell("temperature-and-heat", heatNode.at, {});
+  else if (heatNode) heatFits(heatNode.at, chemistry, { ...given, local, feeds }, tell);
+  else feedTemperaturesUnused(feeds, tell);
+  if (chemistry?.needsTemperature && !temperatureNode && !heatNode) {
     tell("temperature-missing", chemistryNode?.at ?? at, { chemistry: chemistry.title });
   }
   const settled = chemistry && good ? settleFeeds(chemistry, feeds, tell) : { feeds, concentrations: pure(feeds) };
@@ -61,6 +69,7 @@ export function resolveDuty(tree: MapNode, path: string, files: DutyFiles, repor
     ...(local.size > 0 ? { local } : {}),
     ...settled,
     temperature,
+    ...(heat ? { heat } : {}),
     report: asked,
   };
 }
@@ -98,35 +107,13 @@ function resolveWith(
   return { with: own, settings };
 }
 
-function resolveLocal(
-  node: Tree | undefined,
-  chemistry: Chemistry | undefined,
-  report: Report,
-): Map<string, LocalDuty> {
-  const dimension = new Map(chemistry?.constants.map((c) => [c.name, c.value.dimension]));
-  const known = [...dimension.keys()];
-  const places = entriesOf(node).map(({ key: place, value: inner }): [string, LocalDuty] => {
-    const constants = entriesOf(inner).flatMap(({ key, value }): [string, Placed][] => {
-      const wanted = dimension.get(key.text);
-      if (!wanted) {
-        const near = nearest(key.text, known);
-        report("unknown-place", key.at, { name: key.text, nearest: near, wanted: "constant of the chemistry", known });
-        return [];
-      }
-      const resolved = resolveValue(value, wanted, emptyScope, report);
-      return resolved ? [[key.text, { at: key.at, value: resolved }]] : [];
-    });
-    return [place.text, { at: place.at, constants: new Map(constants) }];
-  });
-  return new Map(places);
-}
-
-/** What feeds bring, or places hold, by species. `where`: how a message speaks of one. */
+/** What feeds bring, or places hold, by species. `where`: how a message speaks of one; `warm`: may it have a temperature? */
 export function resolveFeeds(
   node: Tree | undefined,
   chemistry: Chemistry | undefined,
   report: Report,
   where = "feed",
+  warm = false,
 ): Map<string, DutyFeed> {
   const known = chemistry?.species.map((s) => s.name);
   const isSpecies = ({ key }: Entry): boolean => {
@@ -136,10 +123,18 @@ export function resolveFeeds(
   };
   const feeds = new Map<string, DutyFeed>();
   for (const { key, value } of entriesOf(node)) {
-    const entries = entriesOf(value).filter(isSpecies);
+    const written = entriesOf(value);
+    const heat = warm ? written.find((e) => e.key.text === "temperature") : undefined;
+    const entries = written.filter((e) => e !== heat && isSpecies(e));
+    const temperature = heat && resolveTemperature(heat.value, emptyScope, report);
+    aboveZero(`the temperature of feed '${key.text}'`, temperature, false, report);
     const inner: Tree = value.type === "map" ? { ...value, entries } : value;
     const what = `in ${where} '${key.text}', the concentration of`;
-    feeds.set(key.text, { at: key.at, species: placed(inner, () => concentrationBases, what, true, report) });
+    feeds.set(key.text, {
+      at: key.at,
+      temperature,
+      species: placed(inner, () => concentrationBases, what, true, report),
+    });
   }
   return feeds;
 }

@@ -51,7 +51,7 @@ export function settleFeeds(
       const i = chemistry.species.findIndex((x) => x.name === s);
       return [s, { at, value: converted(value, chemistry.species[i].molarMass, way[i]) }] as const;
     });
-    return [name, { at: feed.at, species: new Map(species) }];
+    return [name, { ...feed, species: new Map(species) }];
   });
   return { feeds: new Map(settled), concentrations: way };
 }

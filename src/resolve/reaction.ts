@@ -3,6 +3,7 @@ import { difference, number, power, product } from "../expressions/build.js";
 import { isFault } from "../expressions/fault.js";
 import { parseExpression } from "../expressions/parse.js";
 import type { Made } from "../model/chemistry.js";
+import type { Value } from "../model/value.js";
 import type { Report } from "../problems/report.js";
 import { child, entriesOf, itemsOf, type MapNode, type ScalarNode, type Tree } from "../read/tree.js";
 import { nearest } from "../text/nearest.js";
@@ -18,12 +19,16 @@ export interface WrittenReaction {
   readonly at: Span;
   readonly counts: "molecules" | "as written";
   readonly makes: readonly Made[];
+  /** Names of constants that stand in `makes`. */
+  readonly makesOf: readonly string[];
   /** Every name outside the rate law: the species of the equation, what stands in `makes`. */
   readonly mentions: readonly string[];
   readonly rate: Expression;
   /** The scalar that the rate stands in: its law, or the name of its mass-action constant. */
   readonly rateNode: ScalarNode;
   readonly rateText: string;
+  /** Heat of reaction, J per unit of it. */
+  readonly heat: Value | undefined;
 }
 
 /** Reads one reaction. Undefined once its problems are reported. */
@@ -44,17 +49,29 @@ export function resolveReaction(
       ? fromEquation(equation, equationNode, species, report)
       : fromMakes(makesNode, species, scope, report);
   const rate = resolveRate(node, text, equation, constants, report);
-  if (!sides || !rate) return undefined;
+  const heatNode = child(node, "heat");
+  const heat = heatNode && resolveValue(heatNode, heatDimensions, scope, report);
+  if (!sides || !rate || (heatNode && !heat)) return undefined;
   if (sides.makes.length === 0) {
     report("nothing-happens", written.at, { text });
     return undefined;
   }
-  return { text, at: written.at, counts: equation ? "molecules" : "as written", ...sides, ...rate };
+  return {
+    text,
+    at: written.at,
+    counts: equation ? "molecules" : "as written",
+    ...sides,
+    mentions: [...sides.mentions, ...(heat?.uses ?? [])],
+    ...rate,
+    heat,
+  };
 }
+
+const heatDimensions = [dimensions["molar energy"], dimensions["energy per mass"]];
 
 const sourceText = ({ source, from, to }: Span): string => source.text.slice(from, to).replace(/\s+/g, " ").trim();
 
-type Sides = Pick<WrittenReaction, "makes" | "mentions">;
+type Sides = Pick<WrittenReaction, "makes" | "makesOf" | "mentions">;
 
 /** Right minus left; a species on both sides (a catalyst) changes by the difference. */
 function fromEquation(
@@ -74,7 +91,7 @@ function fromEquation(
   const good = [...left.map((term) => add(term, -1)), ...right.map((term) => add(term, 1))].every(Boolean);
   if (!good) return undefined;
   const makes = [...net].flatMap((count, i) => (count === 0 ? [] : [{ species: i, number: () => count }]));
-  return { makes, mentions: [...left, ...right].map((term) => term.name) };
+  return { makes, makesOf: [], mentions: [...left, ...right].map((term) => term.name) };
 }
 
 function fromMakes(
@@ -83,12 +100,13 @@ function fromMakes(
   scope: Scope,
   report: Report,
 ): Sides | undefined {
-  const mentions: string[] = [];
+  const [mentions, makesOf]: [string[], string[]] = [[], []];
   const made = entriesOf(node).map(({ key, value }): Made | undefined => {
     const i = known(key.text, key.at, species, report);
     const resolved = resolveValue(value, dimensions.ratio, scope, report);
     if (i < 0 || !resolved) return undefined;
     mentions.push(key.text, ...resolved.uses);
+    makesOf.push(...resolved.uses);
     if (resolved.uses.length === 0 && resolved.of([]) === 0) {
       report("zero-stoichiometry", value.at, { species: key.text });
       return undefined;
@@ -96,7 +114,7 @@ function fromMakes(
     return { species: i, number: (env) => resolved.of(env) };
   });
   const good = made.filter((m) => m !== undefined);
-  return good.length === made.length ? { makes: good, mentions } : undefined;
+  return good.length === made.length ? { makes: good, makesOf, mentions } : undefined;
 }
 
 function known(name: string, at: Span, species: readonly string[], report: Report): number {

@@ -15,6 +15,7 @@ const forms: readonly { form: RegExp; what: Reported["what"]; versus: boolean }[
 ];
 const ofTracer = /^t(\d{1,2}) at ([A-Za-z][A-Za-z0-9_.-]*)$/;
 const ofSpecies = new RegExp(`^${name} at ([A-Za-z][A-Za-z0-9_.-]*)$`);
+const ofHeat = /^temperature at ([A-Za-z][A-Za-z0-9_.-]*)$/;
 const ofTime = /^time .+ at .+ (above|below) /;
 
 /** Reads one line of `report:`. Undefined once its problem is reported. */
@@ -42,6 +43,8 @@ export function resolveReportLine(node: ScalarNode, species: readonly string[], 
     const found = { ...line, what, of, versus: versus ? second : undefined, at: match[versus ? 3 : 2] };
     return known(of) && known(found.versus) ? found : undefined;
   }
+  const warm = ofHeat.exec(text);
+  if (warm) return { ...line, what: "temperature", at: warm[1] };
   const single = ofSpecies.exec(text);
   const tracer = ofTracer.exec(text);
   if (tracer && !species.includes(`t${tracer[1]}`) && Number(tracer[1]) > 0)

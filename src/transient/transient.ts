@@ -3,6 +3,8 @@ import type { Plant } from "../compile/plant.js";
 import type { Chemistry } from "../model/chemistry.js";
 import type { Duty } from "../model/duty.js";
 import type { Halt } from "../numerics/odex.js";
+import { RefusedError } from "../problems/refused.js";
+import { problem } from "../problems/report.js";
 import { type Conditions, conditionsOf, type DutySettings } from "../reaction/conditions.js";
 import { conservedBy } from "../reaction/conserved.js";
 import { steadyState } from "../reaction/steady.js";
@@ -87,6 +89,7 @@ export function transient(
   options: TransientOptions = {},
 ): Transient {
   requireCarried(plant, "transient");
+  if (duty.heat) throw new RefusedError([problem("not-yet", duty.heat.at, { what: "`heat` in a transient" })]);
   const settings = options.settings ?? {};
   const conditions = conditionsOf(plant, chemistry, duty, settings);
   const scene = sceneOf(plant, conditions);

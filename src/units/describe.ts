@@ -22,6 +22,7 @@ const words: Readonly<Record<DimensionName, readonly [says: string, example: str
   energy: ["an energy", "40 kJ"],
   power: ["a power", "5 kW"],
   "molar energy": ["an energy per amount", "45 kJ/mol"],
+  "energy per mass": ["an energy per mass", "500 kJ/kg"],
   "molar mass": ["a molar mass", "58.4 g/mol"],
   "molar entropy": ["an energy per amount and temperature", "8.3 J/mol/K"],
   "heat conductance": ["a heat conductance (power per temperature difference)", "40 W/K"],

@@ -24,6 +24,7 @@ export const dimensions = {
   energy: [2, 1, -2, 0, 0, 0, 0],
   power: [2, 1, -3, 0, 0, 0, 0],
   "molar energy": [2, 1, -2, -1, 0, 0, 0],
+  "energy per mass": [2, 0, -2, 0, 0, 0, 0],
   "molar mass": [0, 1, 0, -1, 0, 0, 0],
   "molar entropy": [2, 1, -2, -1, -1, 0, 0],
   "heat conductance": [2, 1, -3, 0, -1, 0, 0],

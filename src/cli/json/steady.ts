@@ -1,7 +1,9 @@
 import type { Plant } from "../../compile/plant.js";
 import type { Duty } from "../../model/duty.js";
-import type { Figure } from "../../reaction/figures.js";
+import { type Figure, temperatureUnit } from "../../reaction/figures.js";
+import type { HeatBalance } from "../../reaction/heat-balance.js";
 import type { Prediction } from "../../reaction/prediction.js";
+import { kilowatt } from "../heat.js";
 import { speciesUnits } from "../species.js";
 import { finite, type QuantityJson, quantity, unitName } from "./quantity.js";
 
@@ -9,18 +11,23 @@ import { finite, type QuantityJson, quantity, unitName } from "./quantity.js";
 export function steadyJson(plant: Plant, duty: Duty, prediction: Prediction): Record<string, unknown> {
   const { state: steady, figures, bounds, premises } = prediction;
   const units = speciesUnits(plant.network, duty, steady.species);
-  const temperature = duty.temperature ? { temperature: quantity(duty.temperature.of([]), kelvin(duty)) } : {};
-  const mixture = (concentrations: ArrayLike<number>): Record<string, QuantityJson> => ({
+  const held = duty.temperature?.of([]);
+  const mixture = (
+    concentrations: ArrayLike<number>,
+    temperature: number | undefined = held,
+  ): Record<string, QuantityJson> => ({
     ...Object.fromEntries(steady.species.map((s, i) => [s, quantity(concentrations[i], units[i])])),
-    ...temperature,
+    ...(temperature === undefined ? {} : { temperature: quantity(temperature, temperatureUnit(duty)) }),
   });
   const n = steady.species.length;
   const places = plant.network.compartments.flatMap((c) => {
     const node = plant.exit.get(c.name);
-    return node === undefined ? [] : [[c.name, mixture(steady.concentrations.subarray(node * n, node * n + n))]];
+    return node === undefined
+      ? []
+      : [[c.name, mixture(steady.concentrations.subarray(node * n, node * n + n), steady.temperatures?.[node])]];
   });
   return {
-    outlets: Object.fromEntries(steady.outlets.map((o) => [o.name, mixture(o.concentrations)])),
+    outlets: Object.fromEntries(steady.outlets.map((o) => [o.name, mixture(o.concentrations, o.temperature)])),
     compartments: Object.fromEntries(places),
     report: figures.map((f) => ({ name: f.name, ...reportedJson(f) })),
     bounds: bounds.flatMap((b) =>
@@ -38,6 +45,7 @@ export function steadyJson(plant: Plant, duty: Duty, prediction: Prediction): Re
     ),
     ...(premises ? { premises } : {}),
     closure: Object.fromEntries(steady.species.map((s, i) => [s, finite(steady.closure[i])])),
+    ...(steady.heat ? { heat: heatJson(steady.heat) } : {}),
     conserved: finite(steady.conserved),
     residual: finite(steady.residual),
     converged: steady.converged,
@@ -45,9 +53,13 @@ export function steadyJson(plant: Plant, duty: Duty, prediction: Prediction): Re
   };
 }
 
-/** The unit that the duty gives its temperature in. */
-const kelvin = (duty: Duty) =>
-  duty.temperature?.unit ?? { name: "K", factor: 1, offset: 0, dimension: [0, 0, 0, 0, 1, 0, 0] as const };
+/** Where the heat goes. */
+const heatJson = ({ released, walls, carried, closure }: HeatBalance): Record<string, unknown> => ({
+  released: quantity(released, kilowatt),
+  walls: Object.fromEntries(walls.map(({ place, gained }) => [place, quantity(gained, kilowatt)])),
+  carried: quantity(carried, kilowatt),
+  closure: finite(closure),
+});
 
 /** A figure in its unit; conversion, yield and selectivity are fractions. */
 export const reportedJson = ({ value, unit, why }: Figure): QuantityJson =>

@@ -1,9 +1,11 @@
 import type { Plant } from "../../compile/plant.js";
 import type { Duty } from "../../model/duty.js";
-import type { Figure } from "../../reaction/figures.js";
+import { type Figure, temperatureUnit } from "../../reaction/figures.js";
+import type { HeatBalance } from "../../reaction/heat-balance.js";
 import type { Prediction } from "../../reaction/prediction.js";
 import { formatNumber, formatQuantity } from "../../units/format.js";
 import { inUnit } from "../../units/unit.js";
+import { kilowatt } from "../heat.js";
 import { speciesUnits } from "../species.js";
 import { blocks, pairs, table } from "./table.js";
 
@@ -13,15 +15,21 @@ export function steadyText(plant: Plant, duty: Duty, prediction: Prediction): st
   const { species } = steady;
   const units = speciesUnits(plant.network, duty, species);
   const n = species.length;
-  const row = (name: string, concentrations: ArrayLike<number>): string[] => [
+  const warm = steady.temperatures && temperatureUnit(duty);
+  const row = (name: string, concentrations: ArrayLike<number>, temperature: number | undefined): string[] => [
     name,
     ...species.map((_, i) =>
       Number.isNaN(concentrations[i]) ? "no flow" : formatNumber(inUnit(concentrations[i], units[i])),
     ),
+    ...(warm
+      ? [temperature === undefined || Number.isNaN(temperature) ? "" : formatNumber(inUnit(temperature, warm))]
+      : []),
   ];
   const bodies = plant.network.compartments.flatMap((c) => {
     const node = plant.exit.get(c.name);
-    return node === undefined ? [] : [row(c.name, steady.concentrations.subarray(node * n, node * n + n))];
+    return node === undefined
+      ? []
+      : [row(c.name, steady.concentrations.subarray(node * n, node * n + n), steady.temperatures?.[node])];
   });
   const worst = steady.closure.reduce((most, c) => Math.max(most, Math.abs(c)), 0);
   const at = duty.temperature
@@ -33,16 +41,18 @@ export function steadyText(plant: Plant, duty: Duty, prediction: Prediction): st
       [
         { title: "leaving" },
         ...species.map((s, i) => ({ title: units[i].name ? `${s}, ${units[i].name}` : s, align: "right" as const })),
+        ...(warm ? [{ title: `temperature, ${warm.name}`, align: "right" as const }] : []),
       ],
       [
-        ...steady.feeds.map((f) => row(f.name, f.concentrations)),
+        ...steady.feeds.map((f) => row(f.name, f.concentrations, f.temperature)),
         ...bodies,
-        ...steady.outlets.map((o) => row(o.name, o.concentrations)),
+        ...steady.outlets.map((o) => row(o.name, o.concentrations, o.temperature)),
       ],
     ),
     figuresText(prediction),
     pairs([
       ...at,
+      ...(steady.heat ? heatLines(steady.heat) : []),
       [
         "balances",
         `every species closes to ${formatNumber(worst, 1)}, what no reaction changes to ${formatNumber(steady.conserved, 1)}, every node to ${formatNumber(steady.residual, 1)}`,
@@ -51,8 +61,18 @@ export function steadyText(plant: Plant, duty: Duty, prediction: Prediction): st
   );
 }
 
-const temperatureUnit = (duty: Duty) =>
-  duty.temperature?.unit ?? { name: "K", factor: 1, offset: 0, dimension: [0, 0, 0, 0, 1, 0, 0] as const };
+/** Where the heat goes, in words. */
+function heatLines({ released, walls, carried, closure }: HeatBalance): (readonly [string, string])[] {
+  const kW = (watt: number): string => formatQuantity(Math.abs(watt), kilowatt);
+  const parts = [
+    `reactions ${released < 0 ? "take up" : "set free"} ${kW(released)}`,
+    ...walls.map(
+      ({ place, gained }) => `the jacket of ${place} ${gained < 0 ? "takes out" : "brings in"} ${kW(gained)}`,
+    ),
+    `the streams carry ${carried < 0 ? "in" : "out"} ${kW(carried)}`,
+  ];
+  return [["heat", `${parts.join(", ")}; closes to ${formatNumber(Math.abs(closure), 1)}`]];
+}
 
 const asPercent = /^(conversion|yield|selectivity)/;
 

@@ -36,7 +36,7 @@ export const chemistryEntries = {
   "arrhenius-half": entry<{ name: string; has: string; lacks: string }>({
     severity: "error",
     says: ({ name, has, lacks }) => `constant '${name}' has \`${has}\` but no \`${lacks}\``,
-    fix: "an Arrhenius constant needs all three: `{at: 298.15 K, value: 2 L/mol/min, activation: 45 kJ/mol}`",
+    fix: "an Arrhenius constant needs all three: `{at: 298.15 K, value: 2 L/mol/min, activation: 45 kJ/mol}`; an equilibrium constant has `heat` in place of `activation`",
   }),
   "rate-dimension": entry<{ text: string; rate: string; got: string; fix: string }>({
     severity: "error",
@@ -53,7 +53,71 @@ export const chemistryEntries = {
   "temperature-missing": entry<{ chemistry: string }>({
     severity: "error",
     says: ({ chemistry }) => `the rates of '${chemistry}' depend on the temperature, and this duty gives none`,
-    fix: "add `temperature: 25 degC`",
+    fix: "add `temperature: 25 degC`, or `heat: adiabatic` with a temperature for every feed",
+  }),
+  "temperature-and-heat": entry<Record<string, never>>({
+    severity: "error",
+    says: () => "a duty has either one `temperature` everywhere or `heat` balances, and this one has both",
+    fix: "take out `temperature:` to have temperatures worked out, or `heat:` to hold one",
+  }),
+  "heat-capacity-missing": entry<{ chemistry: string | undefined }>({
+    severity: "error",
+    says: ({ chemistry }) =>
+      chemistry === undefined
+        ? "heat balances need the heat capacity of the liquid, which a chemistry gives, and this duty names none"
+        : `heat balances need the heat capacity of the liquid, and '${chemistry}' does not give it`,
+    fix: ({ chemistry }) =>
+      chemistry === undefined
+        ? "name a `chemistry:` with a `medium:`, or give one `temperature:`"
+        : "add `medium: {heat-capacity: 4.1 kJ/L/K}` to the chemistry",
+  }),
+  "feed-temperature-missing": entry<{ feed: string }>({
+    severity: "error",
+    says: ({ feed }) => `heat balances need the temperature of every feed, and '${feed}' has none`,
+    fix: ({ feed }) => `add it, such as \`${feed}: {temperature: 25 degC, …}\``,
+  }),
+  "heat-not-given": entry<{ text: string }>({
+    severity: "warning",
+    says: ({ text }) => `'${text}' has no \`heat\`: in this duty's heat balances it counts as none`,
+    fix: "add `heat:` to the reaction in the chemistry, negative where it is set free, or `heat: 0 kJ/mol` where it has none",
+  }),
+  "heat-basis": entry<{ text: string; got: string; wanted: string }>({
+    severity: "error",
+    says: ({ text, got, wanted }) => `the heat of '${text}' is ${got}, but its rate law needs ${wanted}`,
+    fix: "give the heat per mole where the laws count moles, per mass where they count grams",
+  }),
+  "heat-follows-temperature": entry<{ what: string }>({
+    severity: "error",
+    says: ({ what }) => `${what} depends on the temperature, which heat balances do not honour`,
+    fix: "write a value that does not depend on `T`: the one in the middle of the range",
+  }),
+  "heat-capacity-basis": entry<{ perMass: boolean }>({
+    severity: "error",
+    says: ({ perMass }) =>
+      perMass
+        ? "the heat capacity is per mass, and there is no `density`"
+        : "the heat capacity is per volume already, so a `density` beside it has nothing to do",
+    fix: ({ perMass }) =>
+      perMass
+        ? "add `density: 0.98 kg/L`, or write the heat capacity per volume, such as 4.1 kJ/L/K"
+        : "take `density` out",
+  }),
+  "constant-held": entry<{ name: string }>({
+    severity: "error",
+    says: ({ name }) =>
+      `'${name}' follows the temperature, and heat balances need to know how: one value would hold it fixed wherever it is hot or cold`,
+    fix: ({ name }) =>
+      `write it like \`${name}: {at: 298.15 K, value: …, activation: …}\` in the chemistry, or in one that is \`based-on\` it`,
+  }),
+  "nothing-flows-there": entry<{ name: string; key: string; why: string }>({
+    severity: "error",
+    says: ({ name, key, why }) => `\`${key}\` names '${name}', which ${why}`,
+    fix: "name a compartment that liquid flows through",
+  }),
+  "feed-temperature-unused": entry<{ feed: string }>({
+    severity: "warning",
+    says: ({ feed }) => `the temperature of feed '${feed}' changes nothing: this duty holds one temperature everywhere`,
+    fix: "write `heat: adiabatic` or jackets in place of `temperature`, or take the feed's temperature out",
   }),
   "feed-basis": entry<{ species: string; got: string; wanted: string; example: string }>({
     severity: "error",
@@ -75,6 +139,6 @@ export const chemistryEntries = {
   "bad-report-line": entry<{ text: string }>({
     severity: "error",
     says: ({ text }) => `'${text}' is not a figure that a duty can report`,
-    fix: "write conversion of A, yield of P from A, selectivity of P over S, log-removal of A, A at product or t10 at product",
+    fix: "write conversion of A, yield of P from A, selectivity of P over S, log-removal of A, A at product, temperature at product or t10 at product",
   }),
 } as const;

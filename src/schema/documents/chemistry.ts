@@ -1,5 +1,5 @@
 import type { KeyShape, Shape } from "../shape.js";
-import { choice, either, heading, later, list, name, named, oneOrMore, quantity, record, text } from "./common.js";
+import { choice, either, heading, list, name, named, oneOrMore, quantity, record, text } from "./common.js";
 
 const species: KeyShape = {
   says: "What reacts, by name. In a rate law the name stands for the concentration at that place and time; capitals are fine. `{}` where there is nothing to say of it.",
@@ -39,6 +39,11 @@ const constants: KeyShape = {
           shape: quantity("molar energy"),
           says: "Activation energy E of the Arrhenius law, k(T) = value * exp(E / R * (1 / at - 1 / T)). With it goes `at`, and the duty must give a temperature.",
           example: "45 kJ/mol",
+        },
+        heat: {
+          shape: quantity("molar energy"),
+          says: "For an equilibrium constant, in place of `activation`: the heat of the reaction, negative where it is set free, in van 't Hoff's law K(T) = value * exp(heat / R * (1 / at - 1 / T)).",
+          example: "-60 kJ/mol",
         },
         about: { shape: text, says: "What it means, and where it comes from." },
       }),
@@ -97,7 +102,11 @@ const reaction: Shape = record(
       says: "For `mass-action` only: the name of the constant, or of both, forward and back, where the equation has `<->`.",
       example: "[k2, k3]",
     },
-    heat: later("Heat of reaction, exothermic negative."),
+    heat: {
+      shape: quantity("molar energy", "energy per mass"),
+      says: "Heat of one unit of the reaction as it is written (of 2 A -> B, for two A), negative where it is set free. It must not depend on the temperature. Where species are counted in grams it is per mass. It counts where a duty balances heat; a reaction without one then neither warms nor cools, which is warned of.",
+      example: "-60 kJ/mol",
+    },
     about: { shape: text, says: "What it is, and where the rate law comes from." },
   },
   ["equation", "makes"],
@@ -115,5 +124,21 @@ export const chemistryShape = record({
     required: true,
     example: "[{equation: A + B -> P, rate: k1 * A * B}]",
   },
-  medium: later("Heat capacity of the liquid."),
+  medium: {
+    says: "The liquid, for heat balances. It is one liquid throughout: its heat capacity depends neither on composition nor on temperature.",
+    example: "{heat-capacity: 4.1 kJ/L/K}",
+    shape: record({
+      "heat-capacity": {
+        shape: quantity("heat capacity per volume", "heat capacity per mass"),
+        says: "Heat capacity, per volume; or per mass, with `density`.",
+        required: true,
+        example: "4.1 kJ/L/K",
+      },
+      density: {
+        shape: quantity("mass concentration"),
+        says: "Density, where the heat capacity is per mass.",
+        example: "0.98 kg/L",
+      },
+    }),
+  },
 });

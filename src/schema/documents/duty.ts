@@ -1,5 +1,5 @@
 import type { Shape } from "../shape.js";
-import { either, heading, later, list, named, quantity, record, text } from "./common.js";
+import { choice, either, heading, later, list, named, quantity, record, text } from "./common.js";
 
 const upset: Shape = { is: "later", sort: "map", says: "a feed value that changes in time" };
 
@@ -22,25 +22,27 @@ export const dutyShape = record({
     example: "{k2: 0.4 L/mol/min ± 20 %}",
   },
   feeds: {
-    says: "What each feed brings: concentrations by species. A species that is not named is not there. Every feed of the network must be named where there is a chemistry; `{}` is clean liquid.",
+    says: "What each feed brings: concentrations by species. A species that is not named is not there. Every feed of the network must be named where there is a chemistry; `{}` is clean liquid. `temperature` is that of the feed, which `heat` needs.",
     example: "{feed: {A: 1 mol/L ± 1 %, B: 1.2 mol/L}}",
     shape: named(
       {
         is: "named",
-        each: either(quantity("molar concentration", "mass concentration", "number concentration"), upset),
+        each: either(
+          quantity("molar concentration", "mass concentration", "number concentration", "temperature"),
+          upset,
+        ),
         keys: "names",
-        later: { temperature: "The temperature of the feed." },
       },
       "dotted",
     ),
   },
   temperature: {
     shape: quantity("temperature"),
-    says: "The temperature everywhere (isothermal). It must be given where a rate depends on it.",
+    says: "The temperature everywhere (isothermal). It, or `heat`, must be given where a rate depends on it.",
     example: "60 degC",
   },
   report: {
-    says: "The figures that count, over all outlets together or, with `at NAME`, at one place: `conversion of A`, `yield of P from A`, `selectivity of P over S`, `log-removal of A`. A concentration (`A at product`) and a time by which so many % of a tracer pulse have left (`t10 at product`) are always at one place.",
+    says: "The figures that count, over all outlets together or, with `at NAME`, at one place: `conversion of A`, `yield of P from A`, `selectivity of P over S`, `log-removal of A`. A concentration (`A at product`), a temperature (`temperature at product`) and a time by which so many % of a tracer pulse have left (`t10 at product`) are always at one place.",
     example: "[conversion of A, yield of P from A]",
     shape: list(text),
   },
@@ -49,6 +51,29 @@ export const dutyShape = record({
     example: "{bulk: {k1: 3 L/mol/min}}",
     shape: named(named(quantity()), "dotted"),
   },
-  heat: later("Heat balances: adiabatic or with jackets."),
+  heat: {
+    says: "Heat balances in place of one `temperature`: `adiabatic`, or jackets by the name of a compartment, of a member (`chain.2`) or of a part, all else being adiabatic. Every feed then needs its `temperature`, the chemistry the heat capacity of its `medium` and the `heat` of its reactions. Heat goes with the liquid and spreads as it does; walls hold none.",
+    example: "{bulk: {jacket: 15 degC, conductance: 40 W/K}}",
+    shape: either(
+      choice("adiabatic"),
+      named(
+        record({
+          jacket: {
+            shape: quantity("temperature"),
+            says: "Temperature of what flows in the jacket, the same throughout.",
+            required: true,
+            example: "15 degC",
+          },
+          conductance: {
+            shape: quantity("heat conductance"),
+            says: "Heat that passes per difference of temperature: coefficient times area of the whole jacket. It is spread evenly over the volume, so along a tube, over the members of a row; stagnant pockets have no part of it.",
+            required: true,
+            example: "40 W/K",
+          },
+        }),
+        "dotted",
+      ),
+    ),
+  },
   contents: later("Where a transient starts."),
 });
