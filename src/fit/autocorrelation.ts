@@ -82,12 +82,15 @@ export function autocorrelationOf(
 const none: Chain = { rows: [], gaps: new Float64Array(0) };
 
 /** The seen points of a block, one after another. */
-export function chainOf(b: Block): Chain {
-  const seen = Array.from(b.time.keys()).filter((i) => !b.censored?.[i]);
-  return {
-    rows: Int32Array.from(seen, (i) => b.from + i),
-    gaps: Float64Array.from(seen, (i, k) => (k === 0 ? 0 : b.time[i] - b.time[seen[k - 1]])),
-  };
+export function chainOf({ time, from, censored }: Block): Chain {
+  const n = time.length;
+  const seen = new Int32Array(n);
+  let count = 0;
+  for (let i = 0; i < n; i++) if (!censored?.[i]) seen[count++] = i;
+  const rows = seen.subarray(0, count).map((i) => from + i);
+  const gaps = new Float64Array(count);
+  for (let k = 1; k < count; k++) gaps[k] = time[seen[k]] - time[seen[k - 1]];
+  return { rows, gaps };
 }
 
 function lagOne(chains: readonly Chain[], residuals: Float64Array): number {

@@ -77,11 +77,23 @@ function keptPoints(reading: Reading): Pick<Block, "time" | "measured" | "doubts
   const concentration = concentrationsOf(reading);
   if (!series || !concentration)
     return { time: new Float64Array(0), measured: new Float64Array(0), doubts: [], censored: undefined };
-  const value = (i: number): number => concentration[i];
   const leftOut = (t: number): boolean => leaveOut.some((s) => t >= s.from && t <= s.to);
-  const kept = Array.from(series.time.keys()).filter((i) => Number.isFinite(value(i)) && !leftOut(series.time[i]));
-  kept.sort((i, j) => series.time[i] - series.time[j]);
-  const pick = (from: Float64Array): Float64Array => Float64Array.from(kept, (i) => from[i]);
+  const all = new Int32Array(concentration.length);
+  let count = 0;
+  let ordered = true;
+  for (let i = 0; i < all.length; i++) {
+    const t = series.time[i];
+    if (!Number.isFinite(concentration[i]) || (leaveOut.length > 0 && leftOut(t))) continue;
+    if (count > 0 && t < series.time[all[count - 1]]) ordered = false;
+    all[count++] = i;
+  }
+  const kept = all.subarray(0, count);
+  if (!ordered) kept.sort((i, j) => series.time[i] - series.time[j] || i - j);
+  const pick = (from: Float64Array): Float64Array => {
+    const picked = new Float64Array(kept.length);
+    for (let k = 0; k < kept.length; k++) picked[k] = from[kept[k]];
+    return picked;
+  };
   const flags = reading.censored && Int8Array.from(kept, (i) => reading.censored?.[i] ?? 0);
   const censored = flags?.some((f) => f !== 0) ? flags : undefined;
   return { time: pick(series.time), measured: pick(concentration), doubts: reading.doubts.map(pick), censored };

@@ -1,3 +1,5 @@
+import { closest, type GapSums, type Share, shareOf, sumsByGap } from "./gap-sums.js";
+
 /**
  * A row of numbers at times, neighbours of which hang together as exp(-gap / T): a first-order autoregression in continuous
  * time, so that uneven gaps are no matter (R. H. Jones, Biometrics 37 (1981) 13-17; from memory).
@@ -16,9 +18,6 @@ export interface CorrelationTime {
   /** Twice the rise of the restricted log-likelihood above that of members that do not hang together. */
   readonly gain: number;
 }
-
-/** Numbers read twice at one time are not taken to be the same. */
-const closest = 0.9999;
 
 /** Correlation of each member with the one before; 0 for the first. */
 export function links({ gaps }: Chain, time: number): Float64Array {
@@ -89,19 +88,11 @@ export function correlationTimes(
   return chains.map((_, c) => ({ time: all.times[c], gain: all.gain(c) }));
 }
 
-/** What one chain adds to the likelihood. */
-interface Share {
-  readonly square: number;
-  readonly logDeterminant: number;
-  /** Basis against residuals, and against itself (row-major). */
-  readonly along: Float64Array;
-  readonly between: Float64Array;
-}
-
 class Restricted {
   readonly times: number[];
   private readonly shares: Share[];
   private readonly alone: Share;
+  private readonly sums: readonly (readonly GapSums[] | undefined)[];
 
   constructor(
     private readonly residuals: Float64Array,
@@ -112,8 +103,14 @@ class Restricted {
     const inChain = new Uint8Array(residuals.length);
     for (const { rows } of chains) for (let i = 0; i < rows.length; i++) inChain[rows[i]] = 1;
     const rest = Array.from(residuals.keys()).filter((i) => inChain[i] === 0);
-    this.alone = this.share({ rows: rest, gaps: new Float64Array(rest.length) }, 0);
-    this.shares = chains.map((c) => this.share(c, 0));
+    this.sums = chains.map((c) => sumsByGap(c, [residuals, ...basis]));
+    this.alone = this.walked({ rows: rest, gaps: new Float64Array(rest.length) }, 0);
+    this.shares = chains.map((_, c) => this.share(c, 0));
+  }
+
+  private share(c: number, time: number): Share {
+    const sums = this.sums[c];
+    return sums ? shareOf(sums, time, this.basis.length) : this.walked(this.chains[c], time);
   }
 
   /** Finds the time of one chain at those of the others: a grid in its logarithm, then golden sections. */
@@ -125,7 +122,7 @@ class Restricted {
     const span = sorted.reduce((s, g) => s + g, 0);
     if (!(typical > 0)) return;
     const [low, high] = [Math.log(typical / 4), Math.log(Math.max(span / 2, typical))];
-    const at = (u: number): number => this.value(c, this.share(this.chains[c], Math.exp(u)));
+    const at = (u: number): number => this.value(c, this.share(c, Math.exp(u)));
     const count = 16;
     const step = (high - low) / count;
     let best = low;
@@ -135,8 +132,8 @@ class Restricted {
       if (value > most) [best, most] = [low + k * step, value];
     }
     const found = golden(at, Math.max(low, best - step), Math.min(high, best + step), 0.01);
-    const share = this.share(this.chains[c], Math.exp(found));
-    const white = this.share(this.chains[c], 0);
+    const share = this.share(c, Math.exp(found));
+    const white = this.share(c, 0);
     const better = this.value(c, share) > this.value(c, white);
     this.times[c] = better ? Math.exp(found) : 0;
     this.shares[c] = better ? share : white;
@@ -144,7 +141,7 @@ class Restricted {
 
   gain(c: number): number {
     if (this.times[c] === 0) return 0;
-    return 2 * (this.value(c, this.shares[c]) - this.value(c, this.share(this.chains[c], 0)));
+    return 2 * (this.value(c, this.shares[c]) - this.value(c, this.share(c, 0)));
   }
 
   /** Restricted log-likelihood with one chain's share in place of its own. */
@@ -165,7 +162,8 @@ class Restricted {
     return -0.5 * ((this.residuals.length - p) * Math.log(left) + log + logOfA);
   }
 
-  private share(chain: Chain, time: number): Share {
+  /** Member by member. */
+  private walked(chain: Chain, time: number): Share {
     const { basis, residuals } = this;
     const { rows } = chain;
     const n = chain.gaps.length;

@@ -123,6 +123,23 @@ describe("the correlation time of residuals", () => {
     expect(gains.filter((g) => g > 3).length).toBeLessThan(18);
   });
 
+  test("is the same from sums over gaps of a few sorts as member by member", () => {
+    for (const [seed, phi] of [
+      [5, 0.6],
+      [6, 0.95],
+      [7, 0],
+    ]) {
+      const { residuals, basis } = line(seed, n, phi);
+      const sorts = Array.from({ length: n }, (_, i) => (i % 7 === 0 ? 0 : i % 3 === 0 ? 2.5 : 1));
+      // Each gap a sort of its own: too many for sums.
+      const uneven = sorts.map((g, i) => g * (1 + 1e-7 * i));
+      const [summed] = correlationTimes(residuals, basis, [chainOf(sorts)]);
+      const [walked] = correlationTimes(residuals, basis, [chainOf(uneven)]);
+      expect(summed.gain).toBeCloseTo(walked.gain, 3);
+      expect(Math.abs(summed.time - walked.time)).toBeLessThan(1e-3 * walked.time + 1e-9);
+    }
+  });
+
   test("of two chains are found apart", () => {
     const [a, b] = [line(3, 400, 0.9), line(4, 400, 0)];
     const residuals = Float64Array.from([...a.residuals, ...b.residuals]);
