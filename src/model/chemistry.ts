@@ -66,6 +66,8 @@ export interface Reaction {
   readonly makes: readonly Made[];
   /** Rate, concentration per second (SI). */
   rate(env: Env): number;
+  /** The same into out[at]: nothing is allocated, not even for the number. */
+  writeRate(env: Env, out: Float64Array, at: number): void;
   /** d rate / d concentration of each species, same Env; writes into `out` (length: species), no allocation. */
   gradient(env: Env, out: Float64Array): void;
   /** d rate / dT, with those of the constants given by their index; undefined where the rate does not follow the temperature. */

@@ -87,6 +87,7 @@ export function bindKinetics(
     const scaled = Float64Array.from(moved, (i) => numbers[i] / scale[i]);
     return { reaction, numbers, persists, helped: persists.includes(1), moved, scaled };
   });
+  const rates = new Float64Array(reactions.length);
   const slope = new Float64Array(n);
 
   /** Puts the state into the environment; negative concentrations count as none. */
@@ -110,7 +111,8 @@ export function bindKinetics(
       for (let i = 0; i < n; i++) out[to + i] = 0;
       for (let k = 0; k < reactions.length; k++) {
         const { reaction, numbers, persists, helped, moved, scaled } = reactions[k];
-        const asked = reaction.rate(env);
+        reaction.writeRate(env, rates, k);
+        const asked = rates[k];
         const rate = helped ? asked * supply(y, at, asked, numbers, persists, limited) : asked;
         for (let m = 0; m < moved.length; m++) out[to + moved[m]] += scaled[m] * rate;
       }
@@ -123,7 +125,8 @@ export function bindKinetics(
         const { reaction, numbers, persists, helped, moved, scaled } = reactions[k];
         reaction.gradient(env, slope);
         if (thermal) slope[species] = thermal.warmed(k, env);
-        const rate = helped ? reaction.rate(env) : 0;
+        if (helped) reaction.writeRate(env, rates, k);
+        const rate = helped ? rates[k] : 0;
         const share = helped ? supply(y, at, rate, numbers, persists, limited) : 1;
         for (let j = 0; j < n; j++) {
           let d = Number.isFinite(slope[j]) ? slope[j] * scale[j] * share : 0;

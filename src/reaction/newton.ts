@@ -40,14 +40,16 @@ export interface NewtonResult {
 interface Enough {
   readonly relative: number;
   readonly absolute: number;
+  /** What equations miss, beside their component, where rounding alone may leave it: no step is then of use. */
+  readonly balanced: number;
 }
 
 const rounding = 1e-10;
 /** No step is asked for more accurately than this. */
 const tightest = 1e-5;
-const byElimination: Enough = { relative: 1e-11, absolute: 1e-16 };
+const byElimination: Enough = { relative: 1e-11, absolute: 1e-16, balanced: 0 };
 /** Newton's method squares what a step leaves: far more than what it did not solve for. */
-const byIteration: Enough = { relative: 1e-6, absolute: 1e-17 };
+const byIteration: Enough = { relative: 1e-6, absolute: 1e-17, balanced: 1e-14 };
 
 /** Newton's method for a system with its Jacobian, by block elimination. */
 export function solveNewton(system: BlockSystem, y: Float64Array): NewtonResult {
@@ -126,7 +128,7 @@ function iterate(system: System, w: Workspace, y: Float64Array, limit: number, e
     if (next === undefined) break;
     forcing = Math.max(tightest, Math.min(forcing, 0.5 * (next / norm) ** 2));
     norm = next;
-    converged = relative.done || small >= 3;
+    converged = relative.done || small >= 3 || isBalanced(w.f, y, enough);
   }
   return { converged, residual: norm, worst: largestAt(w.f), iterations };
 }
@@ -188,6 +190,11 @@ function relativeStep(step: Float64Array, y: Float64Array, enough: Enough): { la
     if (d > enough.relative * Math.abs(y[i]) + enough.absolute) done = false;
   }
   return { largest, done };
+}
+
+function isBalanced(f: Float64Array, y: Float64Array, { balanced }: Enough): boolean {
+  for (let i = 0; i < y.length; i++) if (!(Math.abs(f[i]) <= balanced * Math.abs(y[i]))) return false;
+  return true;
 }
 
 function size(f: Float64Array): number {

@@ -1,6 +1,5 @@
 import { namesIn } from "../expressions/ast.js";
-import { compileExpression } from "../expressions/compile.js";
-import { differentiate } from "../expressions/differentiate.js";
+import { compileLaw } from "../expressions/law.js";
 import { scaleOf } from "../expressions/scale.js";
 import type { Chemistry, Reaction, Species } from "../model/chemistry.js";
 import type { Report } from "../problems/report.js";
@@ -118,20 +117,15 @@ function bindReaction(
   warm: readonly string[],
   slotOf: (name: string) => number | undefined,
 ): Reaction {
-  const used = namesIn(w.rate);
-  const slopes = species.flatMap((name, i) =>
-    used.includes(name) ? [{ i, slope: compileExpression(differentiate(w.rate, name), slotOf) }] : [],
-  );
+  const { value, write, gradient } = compileLaw(w.rate, species, slotOf);
   return {
     text: w.text,
     at: w.at,
     counts: w.counts,
     makes: w.makes,
-    rate: compileExpression(w.rate, slotOf),
-    gradient(env, out) {
-      out.fill(0);
-      for (const { i, slope } of slopes) out[i] = slope(env);
-    },
+    rate: value,
+    writeRate: write,
+    gradient,
     warmed: withTemperature(w.rate, warm, constants, slotOf),
     heat: w.heat,
   };

@@ -106,6 +106,9 @@ export function chemistryOf(
       counts: "molecules",
       makes: law.makes.flatMap((number, s) => (number === 0 ? [] : [{ species: s, number: () => number }])),
       rate: law.rate,
+      writeRate: (env, out, at) => {
+        out[at] = law.rate(env);
+      },
       gradient: law.gradient,
     })),
     bases: [species.map(() => molar)],
