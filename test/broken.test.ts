@@ -128,6 +128,7 @@ const shownBy: Record<keyof typeof runEntries, string> = {
   "several-optima": "fit/run-codes.test.ts",
   "scale-not-positive": "fit/findings.test.ts",
   "plan-many": "plan/plan.test.ts",
+  "contents-missing": "transient/duty.test.ts",
   "plan-endless": "plan/plan.test.ts",
 };
 

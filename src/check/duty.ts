@@ -4,19 +4,24 @@ import { followedIn, isClosed, type Network } from "../model/network.js";
 import type { Report } from "../problems/report.js";
 import { nearest } from "../text/nearest.js";
 import type { Span } from "../text/source.js";
+import { checkHolds } from "./holds.js";
 import { isCell, placeNames } from "./places.js";
 import { sameKind } from "./same-kind.js";
 
-/** Does a duty fit a network: are its feeds, places and constants there, and does it say what every feed brings? */
-export function checkDuty(network: Network, duty: Duty, report: Report): void {
+/**
+ * Does a duty fit a network: are its feeds, places and constants there, and does it say what every feed brings?
+ * @param inTime whether it is to be followed in time: a closed vessel has no steady state to look for
+ */
+export function checkDuty(network: Network, duty: Duty, report: Report, inTime = false): void {
   if (network.basis === "mass") {
     report("not-yet", duty.at, { what: "a duty on a network with `basis: mass`" });
     return;
   }
-  if (isClosed(network)) {
-    report("not-yet", duty.at, { what: `a duty in a closed vessel, which is a batch,` });
+  if (isClosed(network) && !inTime) {
+    report("not-yet", duty.at, { what: `a duty in a closed vessel, which is a batch without a steady state,` });
     return;
   }
+  if (isClosed(network) && !duty.contents) report("contents-missing", duty.at, {});
   const species = new Set([
     ...(duty.chemistry?.species.map((s) => s.name) ?? []),
     ...[...duty.feeds.values()].flatMap((f) => [...f.species.keys()]),
@@ -43,6 +48,7 @@ export function checkDuty(network: Network, duty: Duty, report: Report): void {
   for (const { key, name, at } of [...held, ...jackets]) {
     if (look(name, at, "compartment", places)) somethingFlows(network, key, name, at, report);
   }
+  for (const [name, { at }] of duty.contents?.levels ?? []) checkHolds(network, name, at, look, report);
   checkSettings(network, duty, look, report);
   for (const { at, place, what } of duty.report) {
     if (at !== undefined && what === "tracer-time") look(at, place, "outlet", outlets);

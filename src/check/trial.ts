@@ -1,4 +1,4 @@
-import { memberOf, rowMeant } from "../model/members.js";
+import { rowMeant } from "../model/members.js";
 import { isClosed, type Network } from "../model/network.js";
 import type { Injection, Reading, Trial } from "../model/trial.js";
 import type { Value } from "../model/value.js";
@@ -9,6 +9,7 @@ import { type Basis, concentrationOf, dosedInto, inBasis, isLevel } from "../uni
 import { siUnit } from "../units/describe.js";
 import { type Dimension, dimensions, isRatio, sameDimension } from "../units/dimension.js";
 import { followsKnown } from "./follows.js";
+import { checkHolds } from "./holds.js";
 import { isCell, placeNames } from "./places.js";
 import { checkReacting } from "./reacting-trial.js";
 import { sameKind } from "./same-kind.js";
@@ -80,21 +81,6 @@ function checkPlaces(network: Network, trial: Trial, report: Report): void {
     if (!trial.late?.has(name)) look(name, value.at, "constant", constants);
     const constant = network.names.find((n) => n.role === "constant" && n.name === name);
     if (constant) sameKind(constant.value.dimension, value, report);
-  }
-}
-
-type Look = (name: string, at: Parameters<Report>[1], wanted: string, among: readonly string[]) => void;
-
-/** Is there a place of that name that may hold tracer? */
-function checkHolds(network: Network, name: string, at: Parameters<Report>[1], look: Look, report: Report): void {
-  const { compartments, groups } = network;
-  const body = compartments.find((c) => c.name === name);
-  const holds = body && (body.kind.keys.volume !== undefined || body.zones !== undefined);
-  if (body && !(holds && body.kind.flows)) {
-    const why = body.kind.flows ? "it holds no liquid" : "the flow never reaches it, so nothing of it is seen";
-    report("contents-nothing", at, { name, why });
-  } else if (!body && name !== "all" && !memberOf(compartments, name)) {
-    look(name, at, "compartment or part", ["all", ...[...compartments, ...groups].map((p) => p.name)]);
   }
 }
 

@@ -92,11 +92,13 @@ function addSimulate(root: Command, { perform, inputs, io }: Stage): void {
     "simulate networks/demo/bypass.yaml --pulse feed",
     'simulate networks/demo/bypass.yaml --step feed --until "6 h" -o step.csv',
     "simulate networks/demo/bypass.yaml --duty networks/demo/normal.yaml",
+    'simulate networks/demo/bypass.yaml --duty networks/demo/normal.yaml --transient --until "3 h"',
   ])
     .option("--pulse <feed>", "a unit pulse into a feed or compartment")
     .option("--step <feed>", "a unit step in a feed or compartment")
     .option("--trial <file>", "what the probes of a trial would read")
     .option("--duty <file>", "the steady state of a duty, with its report")
+    .option("--transient", "with --duty: follow it in time, from its `contents`, or through what changes in its feeds")
     .option("--at <names>", "inner places to look at besides the outlets; repeatable", collectNames)
     .option("--set <name=value>", "another value of a parameter, constant or feed.flow; repeatable", collect)
     .option(
@@ -114,11 +116,8 @@ function addSimulate(root: Command, { perform, inputs, io }: Stage): void {
     .option("--verify", "run a second engine and print the largest difference")
     .option("-o, --output <file>", "write the curves, or what leaves every cell at a duty, to F.csv")
     .option("--ages <file>", "with --pulse and --step: write mean age and life expectancy at every cell to F.csv");
-  later(simulate, "--transient").action((network: string, options, self: Command) =>
-    perform("simulate", async () => {
-      refuseLater(self);
-      return (await import("./simulate.js")).simulate(network, options, { inputs, io });
-    }),
+  simulate.action((network: string, options) =>
+    perform("simulate", async () => (await import("./simulate.js")).simulate(network, options, { inputs, io })),
   );
 }
 
@@ -247,21 +246,6 @@ function addLater(root: Command, name: string): void {
     .action(() => {
       throw new UsageError(`'${name}' is not in this version of backmix`);
     });
-}
-
-/** Options of the contract that this version does not honour: known, so that they are refused in plain words. */
-const laterOptions = new WeakMap<Command, readonly Option[]>();
-
-function later(to: Command, ...flags: readonly string[]): Command {
-  const options = flags.map((f) => new Option(f, "not in this version").hideHelp());
-  for (const option of options) to.addOption(option);
-  laterOptions.set(to, options);
-  return to;
-}
-
-function refuseLater(of: Command): void {
-  const given = laterOptions.get(of)?.find((o) => of.getOptionValueSource(o.attributeName()) === "cli");
-  if (given) throw new UsageError(`'${given.long}' is not in this version of backmix`);
 }
 
 const collect = (value: string, before: readonly string[] | undefined): string[] => [...(before ?? []), value];

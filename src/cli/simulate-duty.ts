@@ -1,7 +1,7 @@
 import { checkDuty } from "../check/duty.js";
 import type { Plant } from "../compile/plant.js";
 import type { Duty } from "../model/duty.js";
-import type { Network } from "../model/network.js";
+import { isClosed, type Network } from "../model/network.js";
 import { parseDuty } from "../parse/duty.js";
 import { collector } from "../problems/report.js";
 import { networkSettings } from "../reaction/conditions.js";
@@ -12,7 +12,7 @@ import { inUnit } from "../units/unit.js";
 import type { Context } from "./context.js";
 import { columnsCsv } from "./csv.js";
 import { steadyJson } from "./json/steady.js";
-import type { Outcome } from "./outcome.js";
+import { type Outcome, UsageError } from "./outcome.js";
 import { plantAt } from "./plant.js";
 import { progressOn } from "./progress.js";
 import { settingsFrom } from "./settings.js";
@@ -24,6 +24,8 @@ import { blocks } from "./text/table.js";
 /** `simulate --duty`: the steady state of one operating point. */
 export function simulateDuty(network: Network, options: SimulateOptions, { inputs, io }: Context): Outcome {
   const duty = inputs.document(options.duty ?? "", parseDuty);
+  if (isClosed(network))
+    throw new UsageError("a closed vessel has no steady state to look for: follow it with --transient");
   const { report, problems } = collector();
   checkDuty(network, duty, report);
   inputs.accept(problems);

@@ -6,6 +6,7 @@ export interface SimulateOptions extends TimeOptions {
   readonly step?: string;
   readonly trial?: string;
   readonly duty?: string;
+  readonly transient?: true;
   readonly at?: readonly string[];
   readonly follows?: string;
   readonly set?: readonly string[];

@@ -3,7 +3,7 @@ import type { Context } from "./context.js";
 import { type Outcome, UsageError } from "./outcome.js";
 import type { SimulateOptions } from "./simulate-options.js";
 
-/** `simulate NETWORK`: tracer after a pulse, a step or as in a trial; or the steady state of a duty. */
+/** `simulate NETWORK`: tracer after a pulse, a step or as in a trial; or a duty, steady or in time. */
 export async function simulate(file: string, options: SimulateOptions, context: Context): Promise<Outcome> {
   const asked = (["pulse", "step", "trial", "duty"] as const).filter((key) => options[key] !== undefined);
   if (asked.length !== 1) {
@@ -20,15 +20,26 @@ export async function simulate(file: string, options: SimulateOptions, context: 
       throw new UsageError(`--ages writes CSV: name a file that ends in .csv, not '${options.ages}'`);
     }
   }
-  if (asked[0] === "duty") {
+  if (options.transient && asked[0] !== "duty") throw new UsageError("--transient goes with --duty FILE");
+  if (asked[0] === "duty" && options.transient) {
+    if (options.verify)
+      throw new UsageError("--verify compares tracer engines; a transient has one way to be followed");
+    if (options.engine !== "auto")
+      throw new UsageError("--engine is for tracer; a transient has one way to be followed");
+  } else if (asked[0] === "duty") {
     for (const key of ["until", "points", "times", "verify"] as const) {
-      if (options[key] !== undefined) throw new UsageError(`--${key} says nothing about the steady state of a duty`);
+      if (options[key] !== undefined)
+        throw new UsageError(
+          `--${key} says nothing about the steady state of a duty; with --transient it is followed in time`,
+        );
     }
     if (options.engine !== "auto") throw new UsageError("--engine is for tracer; a duty has one way to be solved");
   }
   const network = context.inputs.document(file, parseNetwork);
   switch (asked[0]) {
     case "duty":
+      if (options.transient)
+        return (await import("./simulate-transient.js")).simulateTransient(network, options, context);
       return (await import("./simulate-duty.js")).simulateDuty(network, options, context);
     case "trial":
       return (await import("./simulate-trial.js")).simulateTrial(network, options, context);

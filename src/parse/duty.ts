@@ -1,7 +1,7 @@
 import type { Duty } from "../model/duty.js";
 import { resolveDuty } from "../resolve/duty.js";
 import { chemistryBeside } from "./chemistry.js";
-import { type Parsed, type ParseOptions, parseDocument, type Reading } from "./parsed.js";
+import { filesOf, type Parsed, type ParseOptions, parseDocument, type Reading } from "./parsed.js";
 
 /** Reads a duty and the chemistry that it names. */
 export function parseDuty(text: string | Reading, options: ParseOptions = {}): Parsed<Duty> {
@@ -10,7 +10,10 @@ export function parseDuty(text: string | Reading, options: ParseOptions = {}): P
     resolveDuty(
       tree,
       path,
-      { chemistry: (named, at) => chemistryBeside(named, at, { ...options, path }, report, adopt) },
+      {
+        chemistry: (named, at) => chemistryBeside(named, at, { ...options, path }, report, adopt),
+        tables: filesOf(path, options),
+      },
       report,
     ),
   );

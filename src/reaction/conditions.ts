@@ -143,9 +143,10 @@ const fedSpecies = (duty: Duty): string[] => [
 
 /** What is there besides what is fed before a change: at the start, and after it. */
 function otherLevels(duty: Duty, species: readonly string[]): Float64Array[] {
-  const held = [...(duty.contents?.levels.values() ?? [])].map((level) =>
-    Float64Array.from(species, (s) => level.species.get(s)?.value.of([]) ?? 0),
-  );
+  const held = [...(duty.contents?.levels.values() ?? [])].map(({ species: own, temperature }) => {
+    const levels = species.map((s) => own.get(s)?.value.of([]) ?? 0);
+    return Float64Array.from(duty.heat && temperature ? [...levels, temperature.of([])] : levels);
+  });
   const courses = [...duty.feeds.values()].map(({ courses }) =>
     Float64Array.from(species, (s) => {
       const course = courses?.get(s);
@@ -164,7 +165,7 @@ function envAt(chemistry: Chemistry, duty: Duty): Float64Array {
 
 /** Each component by its own largest feed; a species that is not fed by the largest of those that are counted as it is. */
 function scales(feeds: readonly Float64Array[], n: number, kinds: readonly Dimension[]): Float64Array {
-  const whole = feeds[0]?.length ?? n;
+  const whole = feeds.reduce((most, feed) => Math.max(most, feed.length), n);
   const own = Float64Array.from({ length: whole }, (_, i) => Math.max(0, ...feeds.map((feed) => feed[i] ?? 0)));
   const alike = (i: number, j: number): boolean => {
     const [a, b] = [kinds[i] ?? dimensions.ratio, kinds[j] ?? dimensions.ratio];

@@ -33,10 +33,8 @@ export interface InAndOut {
  */
 export function figuresOf(plant: Plant, duty: Duty, state: SteadyState, settings: DutySettings = {}): Figure[] {
   return duty.report.map((line) => {
-    if (line.what === "tracer-time") {
-      const value = untraceable(plant).length > 0 ? Number.NaN : exitTime(plant, line.at, (line.percent ?? 0) / 100);
-      return figure(line, value, plant.network.units.time, "not-estimable");
-    }
+    if (line.what === "tracer-time") return tracerFigure(plant, line);
+    if (line.what === "time-beyond") return figure(line, Number.NaN, plant.network.units.time, "not-estimable");
     if (line.what === "temperature") {
       const node = plant.exit.get(line.at ?? "");
       const held = settings.temperature ?? duty.temperature?.of([]);
@@ -56,6 +54,12 @@ export function temperatureUnit(duty: Duty): Unit {
 }
 
 const kelvin: Unit = { name: "K", factor: 1, offset: 0, dimension: dimensions.temperature };
+
+/** By when so many % of a pulse have left. */
+export function tracerFigure(plant: Plant, line: Reported): Figure {
+  const value = untraceable(plant).length > 0 ? Number.NaN : exitTime(plant, line.at, (line.percent ?? 0) / 100);
+  return figure(line, value, plant.network.units.time, "not-estimable");
+}
 
 /** One figure of a species from what went in and came out. */
 export function speciesFigure(

@@ -62,7 +62,9 @@ export function predict(
   let asked = false;
   const bounds = duty.report.map((line, k): FigureBounds | undefined => {
     const isOutlet = line.at === undefined || plant.outlets.some((o) => o.name === line.at && o.flow > 0);
-    if (line.what === "tracer-time" || line.what === "temperature" || !isOutlet) return undefined;
+    if (line.what === "tracer-time" || line.what === "temperature" || line.what === "time-beyond" || !isOutlet) {
+      return undefined;
+    }
     asked = true;
     const found = boundsAt(line.at);
     if (!found) return undefined;

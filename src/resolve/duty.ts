@@ -2,14 +2,15 @@ import type { Chemistry } from "../model/chemistry.js";
 import type { Duty, DutyFeed, Placed } from "../model/duty.js";
 import { catalogue } from "../problems/catalogue.js";
 import type { Report } from "../problems/report.js";
+import type { Files } from "../read/files.js";
 import { child, type Entry, entriesOf, itemsOf, type MapNode, type Tree, textOf } from "../read/tree.js";
 import { nearest } from "../text/nearest.js";
 import type { Span } from "../text/source.js";
 import { dimensions } from "../units/dimension.js";
-import { concentrationBases } from "./bases.js";
+import { resolveMixture } from "./course.js";
 import { feedTemperaturesUnused, heatFits, resolveHeat } from "./duty-heat.js";
 import { resolveLocal } from "./duty-local.js";
-import { massEquations, settleFeeds } from "./feed-basis.js";
+import { massEquations, type SettledFeeds, settleFeeds, settleLimit } from "./feed-basis.js";
 import { resolveReportLine } from "./report-line.js";
 import { aboveZero } from "./sign.js";
 import { emptyScope, resolveTemperature, resolveValue, type Wanted } from "./value.js";
@@ -17,6 +18,8 @@ import { emptyScope, resolveTemperature, resolveValue, type Wanted } from "./val
 /** Whoever can read files hands over the chemistry that a duty names; undefined once its problems are reported. */
 export interface DutyFiles {
   chemistry(relativePath: string, at: Span): Chemistry | undefined;
+  /** Where logs are. */
+  readonly tables: Files;
 }
 
 /**
@@ -43,8 +46,9 @@ export function resolveDuty(tree: MapNode, path: string, files: DutyFiles, repor
   const at = title?.at ?? tree.at;
   const given = resolveWith(child(tree, "with"), chemistry, tell);
   const local = resolveLocal(child(tree, "local"), chemistry, tell);
-  const feeds = resolveFeeds(child(tree, "feeds"), chemistry, tell, "feed", true);
-  const species = chemistry ? chemistry.species.map((s) => s.name) : fedNames(feeds);
+  const feeds = resolveFeeds(child(tree, "feeds"), chemistry, files.tables, tell, "feed", true);
+  const contents = resolveFeeds(child(tree, "contents"), chemistry, files.tables, tell, "place", true);
+  const species = chemistry ? chemistry.species.map((s) => s.name) : fedNames(feeds, contents);
   const asked = itemsOf(child(tree, "report")).flatMap((item) =>
     item.type === "scalar" ? (resolveReportLine(item, species, tell) ?? []) : [],
   );
@@ -56,9 +60,17 @@ export function resolveDuty(tree: MapNode, path: string, files: DutyFiles, repor
   if (chemistry?.needsTemperature && !temperatureNode && !heatNode) {
     tell("temperature-missing", chemistryNode?.at ?? at, { chemistry: chemistry.title });
   }
-  const settled = chemistry && good ? settleFeeds(chemistry, feeds, tell) : { feeds, concentrations: pure(feeds) };
+  // Without feeds nothing else says how warm it is.
+  for (const [place, { at: placed, temperature: warm }] of contents) {
+    if (heatNode && !warm && feeds.size === 0) tell("contents-temperature-missing", placed, { place });
+    if (!heatNode && warm) tell("feed-temperature-unused", warm.at, { feed: place });
+  }
+  const settled = chemistry && good ? settleFeeds(chemistry, feeds, contents, tell) : pure(feeds, contents);
   if (chemistry && settled) massEquations(chemistry, settled, asked, tell);
-  if (!good || !settled) return undefined;
+  const lines = settled && asked.flatMap((line) => settleLimit(line, chemistry, species, settled, tell) ?? []);
+  if (!good || !settled || !lines) return undefined;
+  const { contents: held, ...fed } = settled;
+  const heldAt = child(tree, "contents")?.at;
   return {
     title: textOf(tree, "duty") ?? "",
     at,
@@ -67,10 +79,11 @@ export function resolveDuty(tree: MapNode, path: string, files: DutyFiles, repor
     flows,
     ...given,
     ...(local.size > 0 ? { local } : {}),
-    ...settled,
+    ...fed,
+    ...(heldAt ? { contents: { at: heldAt, levels: held } } : {}),
     temperature,
     ...(heat ? { heat } : {}),
-    report: asked,
+    report: lines,
   };
 }
 
@@ -111,6 +124,7 @@ function resolveWith(
 export function resolveFeeds(
   node: Tree | undefined,
   chemistry: Chemistry | undefined,
+  files: Files,
   report: Report,
   where = "feed",
   warm = false,
@@ -121,31 +135,31 @@ export function resolveFeeds(
     report("unknown-place", key.at, { name: key.text, nearest: nearest(key.text, known), wanted: "species", known });
     return false;
   };
-  const feeds = new Map<string, DutyFeed>();
-  for (const { key, value } of entriesOf(node)) {
-    const written = entriesOf(value);
-    const heat = warm ? written.find((e) => e.key.text === "temperature") : undefined;
-    const entries = written.filter((e) => e !== heat && isSpecies(e));
-    const temperature = heat && resolveTemperature(heat.value, emptyScope, report);
-    aboveZero(`the temperature of feed '${key.text}'`, temperature, false, report);
-    const inner: Tree = value.type === "map" ? { ...value, entries } : value;
-    const what = `in ${where} '${key.text}', the concentration of`;
-    feeds.set(key.text, {
-      at: key.at,
-      temperature,
-      species: placed(inner, () => concentrationBases, what, true, report),
-    });
-  }
-  return feeds;
+  return new Map(
+    entriesOf(node).map(({ key, value }) => {
+      const written = entriesOf(value);
+      const heat = warm ? written.find((e) => e.key.text === "temperature") : undefined;
+      const temperature = heat && resolveTemperature(heat.value, emptyScope, report);
+      aboveZero(`the temperature of ${where} '${key.text}'`, temperature, false, report);
+      const what = `in ${where} '${key.text}', the concentration of`;
+      const entries = written.filter((e) => e !== heat && isSpecies(e));
+      return [key.text, { ...resolveMixture(key.at, entries, what, files, report), temperature }];
+    }),
+  );
 }
 
-const fedNames = (feeds: ReadonlyMap<string, DutyFeed>): string[] => [
-  ...new Set([...feeds.values()].flatMap((f) => [...f.species.keys()])),
+type Mixtures = ReadonlyMap<string, DutyFeed>;
+
+const fedNames = (feeds: Mixtures, contents: Mixtures): string[] => [
+  ...new Set([...feeds.values(), ...contents.values()].flatMap((f) => [...f.species.keys()])),
 ];
 
-/** Dimensions where nothing reacts: as fed. */
-const pure = (feeds: ReadonlyMap<string, DutyFeed>): Duty["concentrations"] =>
-  fedNames(feeds).map((s) => {
-    const first = [...feeds.values()].find((f) => f.species.has(s));
+/** Dimensions where nothing reacts: as fed, or held at the start. */
+const pure = (feeds: Mixtures, contents: Mixtures): SettledFeeds => {
+  const all = [...feeds.values(), ...contents.values()];
+  const concentrations = fedNames(feeds, contents).map((s) => {
+    const first = all.find((f) => f.species.has(s));
     return first?.species.get(s)?.value.dimension ?? dimensions["molar concentration"];
   });
+  return { feeds, contents, concentrations };
+};

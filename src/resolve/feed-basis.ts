@@ -1,5 +1,5 @@
 import type { Chemistry } from "../model/chemistry.js";
-import type { DutyFeed, Reported } from "../model/duty.js";
+import type { DutyFeed, FeedCourse, Reported } from "../model/duty.js";
 import type { Value } from "../model/value.js";
 import type { Report } from "../problems/report.js";
 import { exampleFor, nameDimension } from "../units/describe.js";
@@ -11,6 +11,7 @@ const mass = dimensions["mass concentration"];
 /** Feeds counted as the rate laws count, and the dimension of each species. */
 export interface SettledFeeds {
   readonly feeds: ReadonlyMap<string, DutyFeed>;
+  readonly contents: ReadonlyMap<string, DutyFeed>;
   readonly concentrations: readonly Dimension[];
 }
 
@@ -21,10 +22,12 @@ export interface SettledFeeds {
 export function settleFeeds(
   chemistry: Chemistry,
   feeds: ReadonlyMap<string, DutyFeed>,
+  contents: ReadonlyMap<string, DutyFeed>,
   report: Report,
 ): SettledFeeds | undefined {
-  const fed = [...feeds.values()].flatMap((feed) =>
-    [...feed.species].map(([name, { value }]) => ({ i: chemistry.species.findIndex((s) => s.name === name), value })),
+  const indexOf = (name: string): number => chemistry.species.findIndex((s) => s.name === name);
+  const fed = [...feeds.values(), ...contents.values()].flatMap((feed) =>
+    [...feed.species].map(([name, { value }]) => ({ i: indexOf(name), value })),
   );
   const fitsAll = (way: readonly Dimension[], convert: boolean): boolean =>
     fed.every(
@@ -46,14 +49,48 @@ export function settleFeeds(
     }
     return undefined;
   }
-  const settled = [...feeds].map(([name, feed]): [string, DutyFeed] => {
+  const counted = (feed: DutyFeed): DutyFeed => {
     const species = [...feed.species].map(([s, { at, value }]) => {
-      const i = chemistry.species.findIndex((x) => x.name === s);
+      const i = indexOf(s);
       return [s, { at, value: converted(value, chemistry.species[i].molarMass, way[i]) }] as const;
     });
-    return [name, { ...feed, species: new Map(species) }];
+    const courses = [...(feed.courses ?? [])].map(([s, course]): [string, FeedCourse] => {
+      const [i, before] = [indexOf(s), feed.species.get(s)?.value];
+      if (course.is === "upset")
+        return [s, { ...course, to: converted(course.to, chemistry.species[i].molarMass, way[i]) }];
+      const factor = before ? factorTo(before, chemistry.species[i].molarMass, way[i]) : 1;
+      return [s, { ...course, values: course.values.map((c) => c * factor) }];
+    });
+    return { ...feed, species: new Map(species), ...(feed.courses ? { courses: new Map(courses) } : {}) };
+  };
+  const all = (mixtures: ReadonlyMap<string, DutyFeed>): ReadonlyMap<string, DutyFeed> =>
+    new Map([...mixtures].map(([name, feed]) => [name, counted(feed)]));
+  return { feeds: all(feeds), contents: all(contents), concentrations: way };
+}
+
+/** The limit of a report line, counted as its species is. Undefined once a misfit is reported. */
+export function settleLimit(
+  line: Reported,
+  chemistry: Chemistry | undefined,
+  species: readonly string[],
+  { concentrations }: Pick<SettledFeeds, "concentrations">,
+  report: Report,
+): Reported | undefined {
+  if (!line.limit) return line;
+  const i = species.indexOf(line.of);
+  const wanted = concentrations[i];
+  const { value } = line.limit;
+  if (sameDimension(value.dimension, wanted)) return line;
+  if (chemistry && converts(chemistry, i, value, wanted)) {
+    return { ...line, limit: { ...line.limit, value: converted(value, chemistry.species[i].molarMass, wanted) } };
+  }
+  report("limit-unit", value.at, {
+    species: line.of,
+    got: nameDimension(value.dimension),
+    wanted: nameDimension(wanted),
+    example: exampleFor(wanted),
   });
-  return { feeds: new Map(settled), concentrations: way };
+  return undefined;
 }
 
 const converts = (chemistry: Chemistry, i: number, { dimension }: Value, wanted: Dimension): boolean =>
@@ -62,9 +99,15 @@ const converts = (chemistry: Chemistry, i: number, { dimension }: Value, wanted:
     (sameDimension(dimension, molar) && sameDimension(wanted, mass)));
 
 /** mol/m3 = (kg/m3) / (kg/mol), and back. */
+function factorTo({ dimension }: Value, molarMass: Value | undefined, wanted: Dimension): number {
+  if (!molarMass || sameDimension(dimension, wanted)) return 1;
+  return sameDimension(wanted, molar) ? 1 / molarMass.of([]) : molarMass.of([]);
+}
+
+/** A value counted so. */
 function converted(value: Value, molarMass: Value | undefined, wanted: Dimension): Value {
-  if (!molarMass || sameDimension(value.dimension, wanted)) return value;
-  const factor = sameDimension(wanted, molar) ? 1 / molarMass.of([]) : molarMass.of([]);
+  const factor = factorTo(value, molarMass, wanted);
+  if (factor === 1) return value;
   const { sd } = value;
   return {
     ...value,

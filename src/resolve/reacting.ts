@@ -1,8 +1,8 @@
 import type { Chemistry } from "../model/chemistry.js";
-import type { DutyFeed } from "../model/duty.js";
 import type { Network } from "../model/network.js";
 import type { Reacting, Reading, ReadSpecies } from "../model/trial.js";
 import type { Report } from "../problems/report.js";
+import type { Files } from "../read/files.js";
 import { child, itemsOf, type MapNode, type Tree, textOf } from "../read/tree.js";
 import { nearest } from "../text/nearest.js";
 import type { Span } from "../text/source.js";
@@ -58,27 +58,25 @@ export function resolveReacting(
   if (!chemistry) return undefined;
   if (chemistry.needsTemperature && !child(tree, "temperature"))
     report("temperature-missing", node.at, { chemistry: chemistry.title });
-  const feeds = resolveFeeds(child(tree, "feeds"), chemistry, report);
-  const contents = resolveFeeds(child(tree, "contents"), chemistry, report, "place");
-  const settled = settleFeeds(chemistry, new Map([...keyed("feed", feeds), ...keyed("place", contents)]), report);
+  const feeds = resolveFeeds(child(tree, "feeds"), chemistry, noFiles, report);
+  const contents = resolveFeeds(child(tree, "contents"), chemistry, noFiles, report, "place");
+  const settled = settleFeeds(chemistry, feeds, contents, report);
   if (!settled) return undefined;
-  const back = (as: string): Map<string, DutyFeed> =>
-    new Map([...settled.feeds].flatMap(([k, v]) => (k.startsWith(`${as} `) ? [[k.slice(as.length + 1), v]] : [])));
   const own = vessel && files.flask(vessel.path, vessel.at);
   return {
     chemistry,
     at: node.at,
     temperature,
-    feeds: back("feed"),
-    contents: back("place"),
+    feeds: settled.feeds,
+    contents: settled.contents,
     begins: clock.format ? clock.first : 0,
     concentrations: settled.concentrations,
     vessel: own,
   };
 }
 
-const keyed = (as: string, map: ReadonlyMap<string, DutyFeed>): [string, DutyFeed][] =>
-  [...map].map(([name, value]) => [`${as} ${name}`, value]);
+/** What a trial feeds is steady: no log of it is read. */
+const noFiles: Files = { read: () => undefined };
 
 const keyAt = (tree: MapNode, key: string): Span | undefined => tree.entries.find((e) => e.key.text === key)?.key.at;
 

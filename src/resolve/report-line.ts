@@ -2,6 +2,10 @@ import type { Reported } from "../model/duty.js";
 import type { Report } from "../problems/report.js";
 import type { ScalarNode } from "../read/tree.js";
 import { nearest } from "../text/nearest.js";
+import { concentrationBases } from "./bases.js";
+import { aboveZero } from "./sign.js";
+import { spanWithin } from "./span.js";
+import { emptyScope, resolveValue } from "./value.js";
 
 const name = "([A-Za-z][A-Za-z0-9_-]*)";
 const place = "(?: at ([A-Za-z][A-Za-z0-9_.-]*))?";
@@ -16,7 +20,7 @@ const forms: readonly { form: RegExp; what: Reported["what"]; versus: boolean }[
 const ofTracer = /^t(\d{1,2}) at ([A-Za-z][A-Za-z0-9_.-]*)$/;
 const ofSpecies = new RegExp(`^${name} at ([A-Za-z][A-Za-z0-9_.-]*)$`);
 const ofHeat = /^temperature at ([A-Za-z][A-Za-z0-9_.-]*)$/;
-const ofTime = /^time .+ at .+ (above|below) /;
+const ofTime = new RegExp(`^time ${name} at ([A-Za-z][A-Za-z0-9_.-]*) (above|below) (\\S.*)$`);
 
 /** Reads one line of `report:`. Undefined once its problem is reported. */
 export function resolveReportLine(node: ScalarNode, species: readonly string[], report: Report): Reported | undefined {
@@ -32,9 +36,14 @@ export function resolveReportLine(node: ScalarNode, species: readonly string[], 
     });
     return false;
   };
-  if (ofTime.test(text)) {
-    report("not-yet", node.at, { what: `'${text}'` });
-    return undefined;
+  const beyond = ofTime.exec(text);
+  if (beyond) {
+    const [, of, at, side, written] = beyond;
+    const from = node.text.lastIndexOf(written);
+    const place = from < 0 ? node.at : spanWithin(node, from, from + written.length);
+    const value = resolveValue({ ...node, text: written, at: place }, concentrationBases, emptyScope, report);
+    if (!known(of) || !value || !aboveZero("a limit", value, true, report)) return undefined;
+    return { ...line, what: "time-beyond", of, at, limit: { side: side === "above" ? "above" : "below", value } };
   }
   for (const { form, what, versus } of forms) {
     const match = form.exec(text);

@@ -63,19 +63,27 @@ function lineAt({ times, values }: Line, t: number, side: number): number {
   return values[k] + ((values[k + 1] - values[k]) * (t - times[k])) / (times[k + 1] - times[k]);
 }
 
-/** What a node holds at the start, scaled: the levels of the longest name that it lies under, else of `all`, else nothing. */
+/**
+ * What a node holds at the start, scaled: the levels of the longest name that it lies under, else of `all`, else nothing. Where
+ * heat is balanced and no temperature is given, that of all feeds mixed.
+ */
 export function holdings(
   plant: Plant,
-  { species, scale }: Conditions,
+  { species, scale, feeds }: Conditions,
   contents: DutyContents | undefined,
   settings: DutySettings,
 ): (node: number) => Float64Array {
   const made = new Map<string, Float64Array>();
+  const flow = plant.feeds.reduce((sum, f) => sum + f.flow, 0);
+  const mixed = plant.feeds.reduce((sum, f, k) => sum + f.flow * feeds[k][species.length], 0) / flow;
   const of = (name: string): Float64Array => {
     let level = made.get(name);
     if (!level) {
-      const given = contents?.levels.get(name)?.species;
-      level = scale.map((s, i) => (settings[`${name}.${species[i]}`] ?? given?.get(species[i])?.value.of([]) ?? 0) / s);
+      const given = contents?.levels.get(name);
+      level = scale.map((s, i) => {
+        if (i === species.length) return (given?.temperature?.of([]) ?? mixed) / s;
+        return (settings[`${name}.${species[i]}`] ?? given?.species.get(species[i])?.value.of([]) ?? 0) / s;
+      });
       made.set(name, level);
     }
     return level;
@@ -87,4 +95,13 @@ export function holdings(
     }
     return of("all");
   };
+}
+
+/** When what is fed changes for the last time, s; 0 where it does not. */
+export function lastChange(duty: Duty): number {
+  const courses = [...duty.feeds.values()].flatMap((f) => [...(f.courses?.values() ?? [])]);
+  return courses.reduce((late, course) => {
+    const end = course.is === "upset" ? course.start + (course.lasting ?? 0) : course.times[course.times.length - 1];
+    return Math.max(late, end);
+  }, 0);
 }

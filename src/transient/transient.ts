@@ -3,8 +3,6 @@ import type { Plant } from "../compile/plant.js";
 import type { Chemistry } from "../model/chemistry.js";
 import type { Duty } from "../model/duty.js";
 import type { Halt } from "../numerics/odex.js";
-import { RefusedError } from "../problems/refused.js";
-import { problem } from "../problems/report.js";
 import { type Conditions, conditionsOf, type DutySettings } from "../reaction/conditions.js";
 import { conservedBy } from "../reaction/conserved.js";
 import { steadyState } from "../reaction/steady.js";
@@ -36,6 +34,8 @@ export interface Course {
   readonly flow: number;
   /** values[k * species + i] at times[k]. */
   readonly values: Float64Array;
+  /** K at times[k], where heat is balanced. */
+  readonly temperatures: Float64Array | undefined;
 }
 
 /** How a vessel goes from one state to another. SI; species by their index in `species`. */
@@ -53,13 +53,18 @@ export interface Transient {
   readonly steps: number;
   /** What leaves an outlet or one of the places asked for, at any time up to the last, SI. */
   readonly look: (name: string) => Look;
+  /** Writes what all feeds together bring at t, amount per second by species; of a jump, before it. */
+  readonly fed: (t: number, out: Float64Array) => void;
 }
 
+/** Components: the species and, where heat is balanced, the temperature; as many as the array takes. */
 export interface Look {
-  /** Writes the concentrations at t (s); of a jump, those after it. */
+  /** Writes what is there at t (s); of a jump, what is after it. */
   at(t: number, out: Float64Array, side?: number): void;
   /** Integral from 0 to t, concentration times s. */
   integral(t: number, out: Float64Array): void;
+  /** Where the smooth stretch ends that begins at t, s; Infinity where it does not. */
+  stretch(t: number): number;
 }
 
 /** Amounts over the whole run by species (mol, kg or a number, as the species is counted). */
@@ -68,6 +73,8 @@ export interface TransientBalance extends Amounts {
   readonly closure: Float64Array;
   /** How far sums that no reaction changes (elements, say) fail to close, the largest, as a share. */
   readonly conserved: number;
+  /** The same as `closure` of heat, where it is balanced. */
+  readonly heat: number | undefined;
 }
 
 /**
@@ -89,7 +96,6 @@ export function transient(
   options: TransientOptions = {},
 ): Transient {
   requireCarried(plant, "transient");
-  if (duty.heat) throw new RefusedError([problem("not-yet", duty.heat.at, { what: "`heat` in a transient" })]);
   const settings = options.settings ?? {};
   const conditions = conditionsOf(plant, chemistry, duty, settings);
   const scene = sceneOf(plant, conditions);
@@ -114,10 +120,11 @@ export function transient(
   const end = run.stopped?.t ?? Number.POSITIVE_INFINITY;
   const n = species.length;
   const toSi = (out: Float64Array): void => {
-    for (let i = 0; i < n; i++) out[i] = Math.max(out[i], 0) * conditions.scale[i];
+    for (let i = 0; i < scene.width; i++) out[i] = Math.max(out[i], 0) * conditions.scale[i];
   };
   const course = (name: string, node: number): Course => {
     const values = new Float64Array(clock.length * n);
+    const temperatures = scene.width > n ? new Float64Array(clock.length) : undefined;
     const row = new Float64Array(scene.width);
     const flows = plant.columns.inflow[node] > 0 || scene.sort[node] === "cell";
     clock.forEach((t, k) => {
@@ -125,8 +132,9 @@ export function transient(
       else run.signal(node).read(t, 1, row, 0);
       toSi(row);
       values.set(row.subarray(0, n), k * n);
+      if (temperatures) temperatures[k] = row[n];
     });
-    return { name, flow: plant.columns.inflow[node], values };
+    return { name, flow: plant.columns.inflow[node], values, temperatures };
   };
   const outlets = plant.outlets.map((o) => course(o.name, o.node));
   return {
@@ -138,6 +146,14 @@ export function transient(
     balance: options.balance === false || run.stopped ? undefined : balanceOf(run, plant, conditions),
     stopped: run.stopped && { t: run.stopped.t, why: run.stopped.why, node: plant.columns.nameOf(run.stopped.node) },
     steps: run.stages.reduce((sum, s) => sum + s.run.steps, 0),
+    fed(t, out) {
+      const row = new Float64Array(scene.width);
+      out.fill(0);
+      plant.feeds.forEach(({ flow }, k) => {
+        run.ask.feeds[k].read(t, -1, row, 0);
+        for (let i = 0; i < n; i++) out[i] += flow * row[i] * conditions.scale[i];
+      });
+    },
     look(name) {
       const signal = run.signal(plant.outlets.find((o) => o.name === name)?.node ?? nodeOf(name));
       const row = new Float64Array(scene.width);
@@ -145,11 +161,15 @@ export function transient(
         at(t, out, side = 1) {
           signal.read(t, side, row, 0);
           toSi(row);
-          out.set(row.subarray(0, n));
+          out.set(row.subarray(0, out.length));
         },
         integral(t, out) {
           signal.integral(t, row);
-          for (let i = 0; i < n; i++) out[i] = row[i] * conditions.scale[i];
+          for (let i = 0; i < out.length; i++) out[i] = row[i] * conditions.scale[i];
+        },
+        stretch(t) {
+          signal.read(t, 1, row, 0);
+          return signal.pace(t, 1);
         },
       };
     },
@@ -166,27 +186,30 @@ function startOf(
   if (duty.contents || !changes(duty)) {
     return { is: "contents", holding: holdings(plant, conditions, duty.contents, settings) };
   }
-  const { converged, concentrations, worst } = steadyState(plant, chemistry, duty, settings);
+  const { converged, concentrations, temperatures, worst } = steadyState(plant, chemistry, duty, settings);
   if (!converged) return worst?.node ?? "";
   const { scale } = conditions;
   const n = conditions.species.length;
   return {
     is: "steady",
-    leaving: (node) => Float64Array.from(scale, (s, i) => (concentrations[node * n + i] || 0) / s),
+    leaving: (node) =>
+      Float64Array.from(scale, (s, i) => ((i < n ? concentrations[node * n + i] : temperatures?.[node]) || 0) / s),
   };
 }
 
 function balanceOf(run: Run, plant: Plant, { species, scale, numbers }: Conditions): TransientBalance {
   const amounts = amountsOf(run, plant);
   const n = species.length;
-  const toSi = (x: Float64Array): Float64Array => scale.map((s, i) => s * x[i]);
+  const toSi = (x: Float64Array): Float64Array => Float64Array.from(species, (_, i) => scale[i] * x[i]);
+  const closure = closureOf(amounts);
   return {
     fed: toSi(amounts.fed),
     left: toSi(amounts.left),
     made: toSi(amounts.made),
     before: toSi(amounts.before),
     held: toSi(amounts.held),
-    closure: closureOf(amounts).slice(0, n),
+    closure: closure.slice(0, n),
+    heat: closure[n],
     conserved: conservedClosure(conservedBy(numbers, n), amounts),
   };
 }
@@ -203,6 +226,7 @@ function nothing(
     name,
     flow: plant.columns.inflow[plant.exit.get(name) ?? 0],
     values: new Float64Array(times.length * species.length).fill(Number.NaN),
+    temperatures: undefined,
   });
   return {
     species,
@@ -213,6 +237,11 @@ function nothing(
     balance: undefined,
     stopped: { t: 0, why: "no steady state", node },
     steps: 0,
-    look: () => ({ at: (_, out) => out.fill(Number.NaN), integral: (_, out) => out.fill(Number.NaN) }),
+    fed: (_, out) => out.fill(Number.NaN),
+    look: () => ({
+      at: (_, out) => out.fill(Number.NaN),
+      integral: (_, out) => out.fill(Number.NaN),
+      stretch: () => Number.POSITIVE_INFINITY,
+    }),
   };
 }

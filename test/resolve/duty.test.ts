@@ -100,7 +100,7 @@ describe("what is wrong is told where it stands", () => {
     [[fed, "with: {k: 3 1/min}"], "wrong-dimension at 3 1/min"],
     [[fed, "report: [conversion of C]"], "unknown-place at conversion of C"],
     [[fed, "report: [how much A]"], "bad-report-line at how much A"],
-    [[fed, "report: [time A at product above 0.2 mol/L]"], "not-yet at time A at product above 0.2 mol/L"],
+    [[fed, "report: [time A at product above 0.2 kg/L]"], "limit-unit at 0.2 kg/L"],
     [[fed, "temperature: -300 degC"], "bad-number at -300 degC"],
   ])("%j", (lines, expected) => {
     const { found, told } = readDuty(duty("chemistry: c", ...lines), second);

@@ -78,7 +78,7 @@ const asPercent = /^(conversion|yield|selectivity)/;
 
 /** A figure as people say it: fractions in %. */
 export function reportedText({ name, value, unit, why }: Figure): string {
-  if (why !== undefined) return why;
+  if (why !== undefined) return /^time /.test(name) ? "in time only (--transient)" : why;
   return asPercent.test(name) ? `${formatNumber(100 * value)} %` : formatQuantity(value, unit);
 }
 

@@ -116,8 +116,9 @@ export const chemistryEntries = {
   }),
   "feed-temperature-unused": entry<{ feed: string }>({
     severity: "warning",
-    says: ({ feed }) => `the temperature of feed '${feed}' changes nothing: this duty holds one temperature everywhere`,
-    fix: "write `heat: adiabatic` or jackets in place of `temperature`, or take the feed's temperature out",
+    says: ({ feed }) =>
+      `the temperature given for '${feed}' changes nothing: this duty holds one temperature everywhere`,
+    fix: "write `heat: adiabatic` or jackets in place of `temperature`, or take it out",
   }),
   "feed-basis": entry<{ species: string; got: string; wanted: string; example: string }>({
     severity: "error",
@@ -139,6 +140,28 @@ export const chemistryEntries = {
   "bad-report-line": entry<{ text: string }>({
     severity: "error",
     says: ({ text }) => `'${text}' is not a figure that a duty can report`,
-    fix: "write conversion of A, yield of P from A, selectivity of P over S, log-removal of A, A at product, temperature at product or t10 at product",
+    fix: "write conversion of A, yield of P from A, selectivity of P over S, log-removal of A, A at product, temperature at product, t10 at product or time A at product above 0.2 mol/L",
+  }),
+  "upset-units": entry<{ from: string; to: string }>({
+    severity: "error",
+    says: ({ from, to }) => `an upset from ${from} to ${to}: both ends must be counted alike`,
+    fix: "give `from` and `to` units of one kind, such as mol/L",
+  }),
+  "log-negative": entry<{ what: string; value: string; row: number; file: string }>({
+    severity: "error",
+    says: ({ what, value, row, file }) =>
+      `${what} is logged as ${value} in row ${row} of ${file}, and cannot be below zero`,
+    fix: "correct the row, or leave its value empty: what is missing is bridged by a straight line",
+  }),
+  "limit-unit": entry<{ species: string; got: string; wanted: string; example: string }>({
+    severity: "error",
+    says: ({ species, got, wanted }) => `the limit is ${got}, but '${species}' is counted as ${wanted}`,
+    fix: ({ example }) => `write it like ${example}`,
+  }),
+  "contents-temperature-missing": entry<{ place: string }>({
+    severity: "error",
+    says: ({ place }) =>
+      `heat is balanced and nothing is fed, but the duty does not say how warm '${place}' is at the start`,
+    fix: ({ place }) => `add its temperature, such as \`${place}: {temperature: 25 degC}\``,
   }),
 } as const;

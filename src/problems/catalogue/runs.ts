@@ -203,6 +203,12 @@ export const runEntries = {
     fix: 'say how long it may take: `--until "2 h"`',
     example: {},
   }),
+  "contents-missing": entry({
+    severity: "error",
+    says: (_: Record<never, never>) => "nothing enters a closed vessel, and the duty does not say what is in it",
+    fix: "add what it holds at the start, such as `contents: {all: {A: 1 mol/L}}`",
+    example: {},
+  }),
 };
 
 function joined(names: readonly string[]): string {

@@ -1,7 +1,51 @@
 import type { Shape } from "../shape.js";
-import { choice, either, heading, later, list, named, quantity, record, text } from "./common.js";
+import { cleaning } from "./cleaning.js";
+import { choice, column, csv, either, heading, list, named, quantity, record, text } from "./common.js";
 
-const upset: Shape = { is: "later", sort: "map", says: "a feed value that changes in time" };
+const varied: Shape = { is: "later", sort: "map", says: "a flow that changes in time" };
+
+const concentration = quantity("molar concentration", "mass concentration", "number concentration");
+
+const mixture = quantity("molar concentration", "mass concentration", "number concentration", "temperature");
+
+/** A feed value that changes in time: by an upset, or as it was logged. */
+const course: Shape = {
+  is: "depends",
+  on: "file",
+  present: record({
+    file: {
+      shape: text,
+      says: "The log of this feed value, a CSV file relative to this one. Between rows it goes in a straight line; before the first it is as in the first, after the last as in the last.",
+      required: true,
+      example: "feed-a.csv",
+    },
+    time: { ...cleaning.time, required: true },
+    value: {
+      shape: column("the concentrations", {
+        unit: { shape: text, says: "The unit of the concentrations in that column.", example: "mol/L" },
+      }),
+      says: "The column of concentrations, with its unit. Rows without a value are bridged by a straight line.",
+      required: true,
+      example: "{column: A, unit: mol/L}",
+    },
+    csv,
+  }),
+  absent: record({
+    from: {
+      shape: concentration,
+      says: "What it is before, and after an upset that ends.",
+      required: true,
+      example: "1 mol/L",
+    },
+    to: { shape: concentration, says: "What it jumps to.", required: true, example: "1.3 mol/L" },
+    start: { shape: quantity("time"), says: "When, on the clock of the transient.", default: "0 s", example: "10 min" },
+    lasting: {
+      shape: quantity("time"),
+      says: "For how long. Without it the change is for good: a change of grade or, to 0, a shut-down of what is fed.",
+      example: "45 s",
+    },
+  }),
+};
 
 /** One operating point. */
 export const dutyShape = record({
@@ -12,7 +56,7 @@ export const dutyShape = record({
     example: "../../shared/chemistry/hydrolysis.yaml",
   },
   flows: {
-    shape: named(either(quantity("flow"), upset), "dotted"),
+    shape: named(either(quantity("flow"), varied), "dotted"),
     says: "Flows by feed, where they are not those of the network.",
     example: "{feed: 11.5 L/min}",
   },
@@ -22,15 +66,12 @@ export const dutyShape = record({
     example: "{k2: 0.4 L/mol/min ± 20 %}",
   },
   feeds: {
-    says: "What each feed brings: concentrations by species. A species that is not named is not there. Every feed of the network must be named where there is a chemistry; `{}` is clean liquid. `temperature` is that of the feed, which `heat` needs.",
+    says: "What each feed brings: concentrations by species. A species that is not named is not there. Every feed of the network must be named where there is a chemistry; `{}` is clean liquid. `temperature` is that of the feed, which `heat` needs. A concentration may change in time: `A: {from: 1 mol/L, to: 1.3 mol/L, start: 10 min, lasting: 45 s}`, or a logged table; a steady state is then that before the change.",
     example: "{feed: {A: 1 mol/L ± 1 %, B: 1.2 mol/L}}",
     shape: named(
       {
         is: "named",
-        each: either(
-          quantity("molar concentration", "mass concentration", "number concentration", "temperature"),
-          upset,
-        ),
+        each: either(mixture, course),
         keys: "names",
       },
       "dotted",
@@ -42,7 +83,7 @@ export const dutyShape = record({
     example: "60 degC",
   },
   report: {
-    says: "The figures that count, over all outlets together or, with `at NAME`, at one place: `conversion of A`, `yield of P from A`, `selectivity of P over S`, `log-removal of A`. A concentration (`A at product`), a temperature (`temperature at product`) and a time by which so many % of a tracer pulse have left (`t10 at product`) are always at one place.",
+    says: "The figures that count, over all outlets together or, with `at NAME`, at one place: `conversion of A`, `yield of P from A`, `selectivity of P over S`, `log-removal of A`. A concentration (`A at product`), a temperature (`temperature at product`), a time by which so many % of a tracer pulse have left (`t10 at product`) and how long a transient is on one side of a limit (`time A at product above 0.2 mol/L`) are always at one place. Of a transient the others are told as they stand at its end.",
     example: "[conversion of A, yield of P from A]",
     shape: list(text),
   },
@@ -75,5 +116,9 @@ export const dutyShape = record({
       ),
     ),
   },
-  contents: later("Where a transient starts."),
+  contents: {
+    says: "What places hold where a transient starts: concentrations by species, by compartment (its pockets included), member, part, or `all` for every other place; a species that is not named is not there, nor is anything in places under no name. Without `contents` a transient starts in the steady state before the first change of a feed, or, where no feed changes, with clean liquid. With `heat`, `temperature` is that of the place; where it is not given, that of all feeds mixed. A closed vessel (a flask) must have it.",
+    example: "{bulk: {A: 0.5 mol/L}}",
+    shape: named(named(mixture), "dotted"),
+  },
 });

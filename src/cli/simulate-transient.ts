@@ -1,0 +1,110 @@
+import { checkDuty } from "../check/duty.js";
+import type { Plant } from "../compile/plant.js";
+import type { Duty } from "../model/duty.js";
+import { isClosed, type Network } from "../model/network.js";
+import { parseDuty } from "../parse/duty.js";
+import { collector } from "../problems/report.js";
+import { networkSettings } from "../reaction/conditions.js";
+import { temperatureUnit } from "../reaction/figures.js";
+import { settlingTime } from "../simulate/tracer.js";
+import { transientFigures } from "../transient/figures.js";
+import { lastChange } from "../transient/inputs.js";
+import { type Transient, transient } from "../transient/transient.js";
+import { formatQuantity } from "../units/format.js";
+import { inUnit } from "../units/unit.js";
+import type { Context } from "./context.js";
+import { columnsCsv } from "./csv.js";
+import { transientJson } from "./json/transient.js";
+import { type Outcome, UsageError } from "./outcome.js";
+import { plantAt } from "./plant.js";
+import { requirePlace, settingsFrom } from "./settings.js";
+import type { SimulateOptions } from "./simulate-options.js";
+import { speciesUnits } from "./species.js";
+import { curvesOn } from "./text/plot.js";
+import { blocks } from "./text/table.js";
+import { transientText } from "./text/transient.js";
+import { type Clock, clockFrom } from "./times.js";
+
+/** `simulate --duty --transient`: a duty in time. */
+export function simulateTransient(network: Network, options: SimulateOptions, { inputs, io }: Context): Outcome {
+  const duty = inputs.document(options.duty ?? "", parseDuty);
+  const { report, problems } = collector();
+  checkDuty(network, duty, report, true);
+  inputs.accept(problems);
+  const plant = plantAt(network, { ...networkSettings(duty), ...settingsFrom(network, options.set) });
+  for (const name of options.at ?? []) requirePlace(name, plant.exit, "--at");
+  const clock = clockFrom(options, network.units.time, () => {
+    if (isClosed(network))
+      throw new UsageError("a closed vessel's curve has no end: say how long with --until or --times");
+    return (
+      lastChange(duty) + Math.max(...plant.feeds.filter((f) => f.flow > 0).map((f) => settlingTime(plant, f.name)))
+    );
+  });
+  const places = network.compartments.map((c) => c.name).filter((name) => plant.exit.has(name));
+  const run = transient(plant, duty.chemistry, duty, clock.si, {
+    at: [...new Set([...places, ...(options.at ?? [])])],
+  });
+  const figures = transientFigures(plant, duty, run);
+  const { output } = options;
+  if (output !== undefined) io.write(output, curvesCsv(plant, duty, run, clock));
+  const units = speciesUnits(network, duty, run.species);
+  const { stopped } = run;
+  return {
+    status: stopped ? 3 : 0,
+    text: blocks(
+      transientText(plant, duty, run, figures, clock, options.at ?? []),
+      curvesOn(io, () =>
+        run.outlets.flatMap(({ name, values }) =>
+          run.species.map((s, i) => ({
+            label: `${s} at ${name}`,
+            x: clock.shown,
+            xUnit: clock.unit.name,
+            y: Float64Array.from(clock.shown, (_, k) => inUnit(values[k * run.species.length + i], units[i])),
+            yUnit: units[i].name,
+          })),
+        ),
+      ),
+      output === undefined ? "" : `  curves: ${output}`,
+    ),
+    json: {
+      ok: !stopped,
+      duty: duty.title,
+      ...transientJson(plant, duty, run, figures, clock),
+      ...(output === undefined ? {} : { written: output }),
+    },
+    notes: stopped
+      ? [
+          stopped.why === "no steady state"
+            ? `backmix: the steady state to start from did not converge, worst in ${stopped.node}; give \`contents:\` to start from something else`
+            : `backmix: stopped at ${formatQuantity(stopped.t, clock.unit)} in ${stopped.node} (${stopped.why.replaceAll("-", " ")}): concentrations change too fast there to be followed; later values are left empty`,
+        ]
+      : [],
+  };
+}
+
+/** A row per place and time, a column per species. */
+function curvesCsv({ network }: Plant, duty: Duty, run: Transient, { shown, unit }: Clock): string {
+  const { species, outlets, places } = run;
+  const units = speciesUnits(network, duty, species);
+  const n = species.length;
+  const courses = [...outlets, ...places];
+  const warm = temperatureUnit(duty);
+  const heated = courses.some((c) => c.temperatures) ? [`temperature [${warm.name}]`] : [];
+  const header = [
+    "leaving",
+    `time [${unit.name}]`,
+    ...species.map((s, i) => `${s} [${units[i].name || "1"}]`),
+    ...heated,
+  ];
+  const at = (row: number) => courses[Math.floor(row / shown.length)];
+  return columnsCsv(
+    header,
+    courses.length * shown.length,
+    (row) => at(row).name,
+    (row, column) => {
+      const k = row % shown.length;
+      if (column > n) return inUnit(at(row).temperatures?.[k] ?? Number.NaN, warm);
+      return column === 0 ? shown[k] : inUnit(at(row).values[k * n + column - 1], units[column - 1]);
+    },
+  );
+}

@@ -1,0 +1,118 @@
+import type { Plant } from "../../compile/plant.js";
+import type { Duty } from "../../model/duty.js";
+import { temperatureUnit } from "../../reaction/figures.js";
+import type { TransientFigure } from "../../transient/figures.js";
+import { passageOf } from "../../transient/passage.js";
+import type { Transient } from "../../transient/transient.js";
+import { dimensions, times } from "../../units/dimension.js";
+import { formatNumber, formatQuantity } from "../../units/format.js";
+import { inUnit } from "../../units/unit.js";
+import { speciesUnits } from "../species.js";
+import type { Clock } from "../times.js";
+import { reportedText } from "./steady.js";
+import { blocks, pairs, table } from "./table.js";
+
+const starts = { steady: "from the steady state before the change", contents: "from what the duty says is there" };
+
+/**
+ * A duty in time, for people.
+ * @param looks inner places to tell of beside the outlets; those of a closed vessel are told of anyway
+ */
+export function transientText(
+  plant: Plant,
+  duty: Duty,
+  run: Transient,
+  figures: readonly TransientFigure[],
+  clock: Clock,
+  looks: readonly string[],
+): string {
+  const until = clock.shown[clock.shown.length - 1];
+  const start = run.start === "contents" && !duty.contents ? "from clean liquid" : starts[run.start];
+  return blocks(
+    `${plant.network.title}: ${duty.title}, ${start}, to ${formatNumber(until)} ${clock.unit.name}${run.stopped ? " (stopped too soon)" : ""}`,
+    run.stopped ? "" : passages(plant, duty, run, clock, looks),
+    figuresText(plant, duty, run, figures, clock),
+    balanceText(run),
+  );
+}
+
+function passages(plant: Plant, duty: Duty, run: Transient, { si, unit }: Clock, looks: readonly string[]): string {
+  const units = speciesUnits(plant.network, duty, run.species);
+  const until = si[si.length - 1];
+  const shown = plant.outlets.length === 0 && looks.length === 0 ? run.places.map((p) => p.name) : looks;
+  const places = [...run.outlets.filter((o) => o.flow > 0).map((o) => o.name), ...shown];
+  const right = (title: string) => ({ title, align: "right" as const });
+  const time = (t: number | undefined): string => (t === undefined ? "" : formatNumber(inUnit(t, unit)));
+  const heated = run.outlets.some((o) => o.temperatures) || run.places.some((p) => p.temperatures);
+  const components = heated ? [...run.species, "temperature"] : run.species;
+  const inUnits = heated ? [...units, temperatureUnit(duty)] : units;
+  const rows = places.flatMap((name) =>
+    components.map((s, i) => {
+      const { first, last, lowest, highest, t1, t99 } = passageOf(run.look(name), components.length, i, until);
+      const say = (c: number): string => formatNumber(inUnit(c, inUnits[i]));
+      const unitText = inUnits[i].name ? `, ${inUnits[i].name}` : "";
+      return [
+        `${s} at ${name}${unitText}`,
+        say(first),
+        say(last),
+        `${say(lowest.value)} at ${time(lowest.at)}`,
+        `${say(highest.value)} at ${time(highest.at)}`,
+        time(t1),
+        time(t99),
+      ];
+    }),
+  );
+  return table(
+    [
+      { title: "leaving" },
+      right("first"),
+      right("last"),
+      right(`lowest, ${unit.name}`),
+      right(`highest, ${unit.name}`),
+      right(`1 % done, ${unit.name}`),
+      right("99 % done"),
+    ],
+    rows,
+  );
+}
+
+/** Stretches beyond a limit that are told one by one. */
+const mostSpans = 3;
+
+function figuresText(
+  plant: Plant,
+  duty: Duty,
+  run: Transient,
+  figures: readonly TransientFigure[],
+  clock: Clock,
+): string {
+  if (figures.length === 0) return "";
+  const { units } = plant.network;
+  const rows = figures.map((f, k) => {
+    if (!f.beyond) return [f.name, reportedText(f), ""];
+    const i = run.species.indexOf(duty.report[k].of);
+    const amount = units.unitFor(times(duty.concentrations[i], dimensions.volume));
+    const { spans, volume } = f.beyond;
+    const at = (t: number): string => formatNumber(inUnit(t, clock.unit));
+    const listed = spans.slice(0, mostSpans).map(({ from, to }) => `${at(from)} to ${at(to)}`);
+    const more = spans.length > mostSpans ? ` and ${spans.length - mostSpans} more` : "";
+    const when = spans.length === 0 ? "never" : `${listed.join(", ")}${more} ${clock.unit.name}`;
+    const left =
+      spans.length === 0 || volume === 0
+        ? ""
+        : `; meanwhile ${formatQuantity(volume, units.unitFor(dimensions.volume))} left with ${formatQuantity(f.beyond.amount, amount)} of ${duty.report[k].of}`;
+    return [f.name, formatQuantity(f.value, clock.unit), `${when}${left}`];
+  });
+  return table([{ title: "figure, at the end" }, { title: "value", align: "right" }, { title: "" }], rows);
+}
+
+function balanceText({ balance }: Transient): string {
+  if (!balance) return "";
+  const worst = balance.closure.reduce((most, c) => Math.max(most, Math.abs(c)), 0);
+  return pairs([
+    [
+      "balances",
+      `every species closes to ${formatNumber(worst, 1)} (held, fed and made against left and held), what no reaction changes to ${formatNumber(balance.conserved, 1)}${balance.heat === undefined ? "" : `, heat to ${formatNumber(Math.abs(balance.heat), 1)}`}`,
+    ],
+  ]);
+}

@@ -1,0 +1,97 @@
+import type { Plant } from "../compile/plant.js";
+import type { Duty, Reported } from "../model/duty.js";
+import type { DutySettings } from "../reaction/conditions.js";
+import { type Figure, type InAndOut, speciesFigure, temperatureUnit, tracerFigure } from "../reaction/figures.js";
+import { one } from "../units/unit.js";
+import { beyond, type Span } from "./beyond.js";
+import type { Transient } from "./transient.js";
+
+/** A figure of a transient; of one over a limit, also when, and what left meanwhile. */
+export interface TransientFigure extends Figure {
+  readonly beyond?: Beyond;
+}
+
+export interface Beyond {
+  /** s */
+  readonly spans: readonly Span[];
+  /** m3 that left meanwhile, and how much of the species it held (SI). */
+  readonly volume: number;
+  readonly amount: number;
+}
+
+/**
+ * The values of a duty's report lines: times beyond a limit over the whole run, all others as they stand at its end. In a
+ * closed vessel, conversion is of what was there at the start.
+ */
+export function transientFigures(
+  plant: Plant,
+  duty: Duty,
+  run: Transient,
+  settings: DutySettings = {},
+): TransientFigure[] {
+  const end = run.times[run.times.length - 1];
+  return duty.report.map((line): TransientFigure => {
+    if (line.what === "tracer-time") return tracerFigure(plant, line);
+    if (line.what === "time-beyond") return beyondFigure(plant, line, run, end);
+    if (line.what === "temperature") return temperatureFigure(duty, line, run, end, settings);
+    if (run.stopped) return { name: line.text, value: Number.NaN, why: "undefined", unit: one };
+    return speciesFigure(duty, run.species, line, streamsAt(plant, run, line, end), settings);
+  });
+}
+
+function temperatureFigure(duty: Duty, line: Reported, run: Transient, end: number, settings: DutySettings): Figure {
+  const n = run.species.length;
+  const row = new Float64Array(n + 1).fill(Number.NaN);
+  const held = settings.temperature ?? duty.temperature?.of([]);
+  if (held === undefined && !run.stopped) run.look(line.at ?? "").at(end, row, -1);
+  const value = held ?? row[n];
+  return { name: line.text, value, why: Number.isNaN(value) ? "undefined" : undefined, unit: temperatureUnit(duty) };
+}
+
+function beyondFigure(plant: Plant, line: Reported, run: Transient, end: number): TransientFigure {
+  const { limit, at = "" } = line;
+  const unit = plant.network.units.time;
+  if (!limit || run.stopped) return { name: line.text, value: Number.NaN, why: "undefined", unit };
+  const look = run.look(at);
+  const n = run.species.length;
+  const i = run.species.indexOf(line.of);
+  const spans = beyond(look, n, i, limit.value.of([]), limit.side, end);
+  const value = spans.reduce((sum, { from, to }) => sum + to - from, 0);
+  const flow = plant.columns.inflow[plant.exit.get(at) ?? 0];
+  const row = new Float64Array(n);
+  let amount = 0;
+  for (const { from, to } of spans) {
+    look.integral(to, row);
+    amount += flow * row[i];
+    look.integral(from, row);
+    amount -= flow * row[i];
+  }
+  return { name: line.text, value, why: undefined, unit, beyond: { spans, volume: flow * value, amount } };
+}
+
+/** What is fed and what leaves at a time; in a closed vessel, what there was at the start and is then. */
+function streamsAt(plant: Plant, run: Transient, line: Reported, t: number): InAndOut {
+  const n = run.species.length;
+  const there = new Float64Array(n);
+  if (line.at !== undefined) {
+    const out = new Float64Array(n);
+    run.look(line.at).at(t, out, -1);
+    const fed = new Float64Array(n);
+    if (plant.feeds.length === 0) run.look(line.at).at(0, fed);
+    else {
+      const flow = plant.feeds.reduce((sum, f) => sum + f.flow, 0);
+      run.fed(t, fed);
+      for (let i = 0; i < n; i++) fed[i] /= flow;
+    }
+    return { fed, out };
+  }
+  if (plant.feeds.length === 0) return { fed: run.balance?.before ?? there, out: run.balance?.held ?? there };
+  const [fed, out] = [new Float64Array(n), new Float64Array(n)];
+  run.fed(t, fed);
+  for (const { name, flow } of plant.outlets) {
+    if (!(flow > 0)) continue;
+    run.look(name).at(t, there, -1);
+    for (let i = 0; i < n; i++) out[i] += flow * there[i];
+  }
+  return { fed, out };
+}

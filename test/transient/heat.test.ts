@@ -1,0 +1,76 @@
+import { describe, expect, test } from "vitest";
+import { compile } from "../../src/compile/compile.js";
+import { parseDuty } from "../../src/parse/duty.js";
+import { parseNetwork } from "../../src/parse/network.js";
+import { networkSettings } from "../../src/reaction/conditions.js";
+import { steadyState } from "../../src/reaction/steady.js";
+import { transient } from "../../src/transient/transient.js";
+
+const chemistry = `chemistry: Warm decay
+format: 1
+species: {A: {}, P: {}}
+constants: {k: {at: 300 K, value: 0.05 1/min, activation: 50 kJ/mol}}
+reactions: [{equation: A -> P, rate: k * A, heat: -80 kJ/mol}]
+medium: {heat-capacity: 4 kJ/L/K}
+`;
+
+function read(network: string, duty: string) {
+  const net = parseNetwork(`network: A vessel\nformat: 1\n${network}`, { path: "n.yaml" });
+  const found = parseDuty(`duty: A duty\nformat: 1\nchemistry: c.yaml\n${duty}`, {
+    path: "d.yaml",
+    read: () => chemistry,
+  });
+  expect([...net.problems, ...found.problems]).toEqual([]);
+  if (!net.document || !found.document) throw new Error("unread");
+  const { plant } = compile(net.document, networkSettings(found.document));
+  if (!plant) throw new Error("no plant");
+  return { plant, duty: found.document };
+}
+
+const minutes = (...t: number[]): number[] => t.map((x) => 60 * x);
+const train = `feeds: {feed: {flow: 10 L/min, to: pipe}}
+compartments:
+  pipe: {kind: tubular, volume: 50 L, to: tank}
+  tank: {kind: stirred, volume: 400 L, to: {pipe: 5 L/min, bed: rest}}
+  bed: {kind: dispersed, volume: 60 L, peclet: 15, to: product}
+outlets: [product]
+`;
+
+describe("heat in time", () => {
+  test("adiabatic batch: the temperature follows conversion, and the curve an independent quadrature", () => {
+    const { plant, duty } = read(
+      "compartments: {flask: {kind: stirred, volume: 1 L}}",
+      "contents: {flask: {A: 1 mol/L, temperature: 300 K}}\nheat: adiabatic",
+    );
+    const run = transient(plant, duty.chemistry, duty, minutes(0, 2, 5, 10, 20));
+    const [flask] = run.places;
+    // Adiabatic rise 20 K; t = int dx / (k(T) (1 - x)), T = 300 + 20 x, by Simpson's rule.
+    const k = (x: number): number => (0.05 / 60) * Math.exp((50_000 / 8.314462618) * (1 / 300 - 1 / (300 + 20 * x)));
+    for (let j = 1; j < 5; j++) {
+      const x = 1 - flask.values[2 * j] / 1000;
+      expect(flask.temperatures?.[j]).toBeCloseTo(300 + 20 * x, 6);
+      const n = 20_000;
+      let sum = 0;
+      for (let i = 0; i <= n; i++)
+        sum += (i === 0 || i === n ? 1 : i % 2 ? 4 : 2) / (k((x * i) / n) * (1 - (x * i) / n));
+      expect((sum * x) / (3 * n) / run.times[j]).toBeCloseTo(1, 8);
+    }
+    expect(Math.abs(run.balance?.heat ?? 1)).toBeLessThan(1e-9);
+    expect(run.balance?.conserved).toBeLessThan(1e-12);
+  });
+
+  test.each([
+    "heat: adiabatic",
+    "heat: {tank: {jacket: 20 degC, conductance: 300 W/K}, pipe: {jacket: 30 degC, conductance: 20 W/K}}",
+  ])("a loop of a tube and a tank, then a dispersed bed, comes to its steady state: %s", (heat) => {
+    const { plant, duty } = read(train, `feeds: {feed: {A: 1 mol/L, temperature: 30 degC}}\n${heat}`);
+    const run = transient(plant, duty.chemistry, duty, minutes(0, 20, 900), { at: ["tank", "pipe"] });
+    const still = steadyState(plant, duty.chemistry, duty);
+    const last = run.outlets[0].values.slice(4);
+    for (let i = 0; i < 2; i++) expect(last[i] / 1000).toBeCloseTo(still.outlets[0].concentrations[i] / 1000, 8);
+    expect(run.outlets[0].temperatures?.[2]).toBeCloseTo(still.outlets[0].temperature ?? 0, 6);
+    for (const c of run.balance?.closure ?? [1]) expect(Math.abs(c)).toBeLessThan(1e-9);
+    expect(Math.abs(run.balance?.heat ?? 1)).toBeLessThan(1e-9);
+    expect(run.balance?.conserved).toBeLessThan(1e-9);
+  });
+});
