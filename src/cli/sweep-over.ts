@@ -43,6 +43,8 @@ export async function overOutcome(asked: Asked, options: SweepOptions, { io }: C
     ),
     json: {
       ok: possible && !found.stopped,
+      network: operation.network.title,
+      duty: operation.duty.title,
       ...sweepJson(found),
       ...(output === undefined ? {} : { written: output }),
     },

@@ -1,3 +1,4 @@
+import { checkAsked } from "../check/asked.js";
 import { checkDuty } from "../check/duty.js";
 import { checkTrial } from "../check/trial.js";
 import type { Duty } from "../model/duty.js";
@@ -10,6 +11,7 @@ import { beside } from "../read/paths.js";
 import { checkShape } from "../read/shape.js";
 import { child, itemsOf, type MapNode, type ScalarNode, textOf } from "../read/tree.js";
 import { readYaml } from "../read/yaml.js";
+import { resolveAims, resolveSweeps } from "../resolve/asked.js";
 import { parseDuty } from "./duty.js";
 import { parseNetwork } from "./network.js";
 import { filesOf, type Parsed, type ParseOptions, parseDocument, type Reading } from "./parsed.js";
@@ -40,6 +42,10 @@ export function parseStudy(text: string | Reading, options: ParseOptions = {}): 
     );
     const duties = open("duties", parseDuty);
     const changes = open("changes", parseChange);
+    const listed = { duties: byFile(tree, "duties", duties), changes: byFile(tree, "changes", changes) };
+    const sweeps = resolveSweeps(child(tree, "sweeps"), listed, report);
+    const aims = resolveAims(child(tree, "aims"), listed, report);
+    checkAsked({ rivals, sweeps, aims }, report);
     for (const { network } of rivals) {
       const { report: own, problems } = collector();
       for (const trial of trials) checkTrial(network, trial, own);
@@ -60,10 +66,24 @@ export function parseStudy(text: string | Reading, options: ParseOptions = {}): 
       trials,
       duties,
       changes,
+      sweeps,
+      aims,
       out: textOf(tree, "out"),
       seed: Number(textOf(tree, "seed") ?? 1),
     };
   });
+}
+
+/** Every file that a list names, with its document where it could be read. */
+function byFile<T extends { readonly file: string }>(
+  tree: MapNode,
+  key: string,
+  documents: readonly T[],
+): Map<string, T | undefined> {
+  const paths = itemsOf(child(tree, key)).flatMap((item) =>
+    item.type === "scalar" ? [beside(item.at.source.path, item.text)] : [],
+  );
+  return new Map(paths.map((path) => [path, documents.find((d) => d.file === path)]));
 }
 
 /** What has a value in each trial must have one in a duty. */

@@ -28,6 +28,9 @@ export interface StudyReport {
   readonly residence: readonly Figure[];
   readonly predictions: readonly Prediction[];
   readonly changes: readonly Change[];
+  /** Figures of duties over their inputs. */
+  readonly sweeps: readonly Figure[];
+  readonly aims: readonly ReportAim[];
   readonly assumptions: readonly string[];
   readonly cautions: CautionTriggers;
   /** What was tested: flows, temperatures, dates; one line each. */
@@ -139,6 +142,14 @@ export interface Change {
   readonly probabilityBetter: number;
   /** Rivals for which it could not be tried, and why. */
   readonly skipped?: string;
+}
+
+/** What it takes to meet an aim. */
+export interface ReportAim {
+  /** "conversion of A >= 95 % by feed.flow, Normal production". */
+  readonly question: string;
+  /** The answer in sentences. */
+  readonly says: readonly string[];
 }
 
 /** Which cautions of the trade apply. */

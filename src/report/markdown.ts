@@ -18,6 +18,11 @@ export function writeSummary(report: StudyReport): string {
       ["change", "quantity", "value (95 %)", "chance of being better"],
       report.changes.map((c) => [c.name, c.quantity, estimateLine(c.estimate), chance(c.probabilityBetter)]),
     ),
+    bullets(
+      "What it takes",
+      // The first stand in the answer.
+      report.aims.length > 2 ? report.aims.map((a) => `${a.question}: ${a.says[0]}`) : [],
+    ),
     table(
       "Fitted",
       ["parameter", "value (95 %)", "remark"],

@@ -1,5 +1,6 @@
 import { figure, type Html, section } from "./html.js";
 import type { StudyReport } from "./input.js";
+import { aimsSection, sweepsSection } from "./sections/asked.js";
 import { changesSection } from "./sections/changes.js";
 import { dataSection } from "./sections/data.js";
 import { findingsSection } from "./sections/findings.js";
@@ -20,6 +21,8 @@ export const sections: readonly ((report: StudyReport) => Html)[] = [
   ({ residence }) => section("residence", "How long the liquid stays", residence.map(figure)),
   predictionsSection,
   changesSection,
+  aimsSection,
+  sweepsSection,
   assumptionsSection,
   cautionsSection,
   provenanceSection,

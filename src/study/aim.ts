@@ -1,7 +1,5 @@
 import type { Aim } from "../model/aim.js";
-import type { Duty } from "../model/duty.js";
-import { goldenSection } from "../numerics/golden-section.js";
-import { brent } from "../numerics/roots.js";
+import { crossings, type Looked, remembered, stretches, withPeak } from "../numerics/crossings.js";
 import type { Figure } from "../reaction/figures.js";
 import { betterIs } from "./direction.js";
 import { type Input, rowWith } from "./inputs.js";
@@ -60,130 +58,130 @@ export interface Reached {
 
 /** Points of the first look; two crossings nearer than their distance can be missed. */
 const looks = 33;
-const looksOverDraws = 17;
+/** Points over each stretch in which the middle values meet the aim, where draws are looked at. */
+const looksOverDraws = 5;
 
 /**
  * The values of one input at which a figure of a duty meets an aim: looked for on a grid over the whole range, then found
- * by Brent's method; where the grid has none, the best point is sought for by golden section and looked around.
- * With a confidence the quantile of the figure over shared draws takes the place of its middle value.
+ * by Brent's method; where the grid has none, the best point is looked around by golden section. With a confidence the
+ * quantile of the figure over shared draws takes the place of its middle value, where the middle value meets the aim.
  */
 export function solveAim(operation: Operation, aim: Aim, range: AimRange, options: AimOptions = {}): AimResult {
-  const duty: Duty = { ...operation.duty, report: [aim.line] };
-  const own: Operation = { ...operation, duty };
   const { rows = [], confidence } = options;
-  const overDraws = confidence !== undefined && rows.length > 0;
-  const sign = aim.sign === "=" && overDraws ? (betterIs(duty, 0) < 0 ? "<=" : ">=") : aim.sign;
-  const upward = sign === "<=" ? -1 : 1;
+  const own: Operation = { ...operation, duty: { ...operation.duty, report: [aim.line] } };
+  const better = betterIs(own.duty, 0) < 0 ? "<=" : ">=";
+  const sure = rows.length > 0 ? confidence : undefined;
+  const sign = aim.sign === "=" && sure !== undefined ? better : aim.sign;
   const { input, from, to, log } = range;
-  const count = overDraws ? looksOverDraws : looks;
-  let spent = 0;
   const at = (share: number): number =>
     share <= 0 ? from : share >= 1 ? to : log ? from * (to / from) ** share : from + share * (to - from);
-  const drawnAt = (x: number): number[] =>
-    rows.map((row) => valuesAt(own, rowWith(row, [input], [x]))?.[0] ?? Number.NaN);
-  const whys = new Map<number, string>();
-  const valueAt = (x: number): number => {
-    options.progress?.(Math.min(0.99, spent++ / (2 * count)));
-    const here = operate(own, rowWith(noRow, [input], [x]));
-    if (here.cannot !== undefined) whys.set(x, here.cannot);
-    if (!here.figures) return Number.NaN;
-    return overDraws ? keptBy(drawnAt(x), confidence, sign) : here.figures[0].value;
-  };
+  const place = (share: number): Row => rowWith(noRow, [input], [at(share)]);
   // Above 0 where the aim is met; squashed, so that an infinite log-removal is a number too.
   const scale = Math.abs(aim.target.value) || 1;
-  const over = (share: number): number => squashed((valueAt(at(share)) - aim.target.value) * upward, scale);
-  const grid = spaced(0, 1, count, false);
-  const seen: [share: number, over: number][] = [];
-  for (const share of grid) {
+  const over = (value: number): number => squashed((value - aim.target.value) * (sign === "<=" ? -1 : 1), scale);
+  const whys = new Map<number, string>();
+  let spent = 0;
+  const middle = remembered((share) => {
+    options.progress?.(Math.min(0.5, spent++ / (2 * looks)));
+    const here = operate(own, place(share));
+    if (here.cannot !== undefined) whys.set(share, here.cannot);
+    return over(here.figures?.[0].value ?? Number.NaN);
+  });
+  const drawn = (share: number): number[] =>
+    rows.map((row) => valuesAt(own, rowWith(row, [input], [at(share)]))?.[0] ?? Number.NaN);
+  const kept = (share: number): number =>
+    sure === undefined ? Number.NaN : keptBy(drawn(share), sure, sign === "<=" ? "<=" : ">=");
+  const keptOver = remembered((share) => {
+    options.progress?.(Math.min(0.99, 0.5 + spent++ / 100));
+    return Number.isNaN(middle(share)) ? Number.NaN : over(kept(share));
+  });
+  const grid: Looked[] = [];
+  for (const x of spaced(0, 1, looks, false)) {
     if (options.cancelled?.()) break;
-    seen.push([share, over(share)]);
+    grid.push({ x, value: middle(x) });
   }
-  const stopped = seen.length < grid.length;
-  // A peak (of `=`: a trough as well) between two points of the grid may touch what the grid does not.
-  const turns = sign === "=" ? [1, -1] : [1];
-  for (const turn of turns) {
-    if (stopped || seen.some(([, v]) => v * turn >= 0)) continue;
-    const top = seen.reduce((a, b) => (b[1] * turn > a[1] * turn || Number.isNaN(a[1]) ? b : a), seen[0]);
-    const step = 1 / (count - 1);
-    const [low, high] = [Math.max(0, top[0] - step), Math.min(1, top[0] + step)];
-    const peak = goldenSection((s) => over(s) * turn, low, high, overDraws ? 1e-3 : 1e-6);
-    if (peak.value > top[1] * turn) seen.push([peak.x, peak.value * turn]);
-  }
-  seen.sort((a, b) => a[0] - b[0]);
-  const zeros: number[] = [];
-  for (let k = 0; k < seen.length; k++) {
-    const [share, value] = seen[k];
-    if (value === 0) zeros.push(share);
-    if (k === 0) continue;
-    const [before, was] = seen[k - 1];
-    if (!(was * value < 0)) continue;
-    const zero = brent(over, before, share, overDraws ? 1e-5 : 0);
-    if (typeof zero === "number") zeros.push(zero);
-  }
-  const reached = (share: number): Reached | undefined => {
-    const x = at(share);
-    const { figures } = operate(own, rowWith(noRow, [input], [x]));
-    if (!figures) return undefined;
-    const drawn = rows.length > 0 ? drawnAt(x).filter((v) => !Number.isNaN(v)) : [];
-    const ofSign = aim.sign === "=" ? (betterIs(duty, 0) < 0 ? -1 : 1) : upward;
+  const stopped = grid.length < looks;
+  const first = stopped ? grid : looked(middle, grid, sign);
+  const f = sure === undefined ? middle : keptOver;
+  const seen = sure === undefined || stopped ? first : overStretches(first, keptOver);
+  const zeros = stopped ? [] : crossings(f, seen, sure === undefined ? 0 : 1e-3 / looks);
+  const reached = (share: number): Reached[] => {
+    const figure = operate(own, place(share)).figures?.[0];
+    if (!figure) return [];
+    const values = drawn(share).filter((v) => !Number.isNaN(v));
+    const side = (aim.sign === "=" ? better : aim.sign) === "<=" ? -1 : 1;
     // A draw that is the target itself meets it.
-    const slack = 1e-9 * scale;
-    return {
-      at: x,
-      figure: figures[0],
-      share:
-        drawn.length > 0
-          ? drawn.filter((v) => (v - aim.target.value) * ofSign >= -slack).length / drawn.length
-          : undefined,
-      kept: overDraws ? keptBy(drawn, confidence, sign) : undefined,
-    };
+    const meeting = values.filter((v) => (v - aim.target.value) * side >= -1e-9 * scale).length;
+    return [
+      {
+        at: at(share),
+        figure,
+        share: values.length > 0 ? meeting / values.length : undefined,
+        kept: sure === undefined ? undefined : kept(share),
+      },
+    ];
   };
-  const nearest = (sign === "=" ? seen.map(([s, v]) => [s, -Math.abs(v)] as const) : seen).filter(
-    ([, v]) => !Number.isNaN(v),
-  );
-  const top = nearest.reduce<readonly [number, number] | undefined>((a, b) => (!a || b[1] > a[1] ? b : a), undefined);
+  const rank = ({ value }: Looked): number => (sign === "=" ? -Math.abs(value) : value);
+  const best = seen
+    .filter((p) => !Number.isNaN(p.value))
+    .reduce<Looked | undefined>((a, b) => (!a || rank(b) > rank(a) ? b : a), undefined);
+  const inInput = ({ from: a, to: b }: Stretch): Stretch => ({ from: at(a), to: at(b) });
   return {
     aim,
     range,
     sign,
-    confidence: overDraws ? confidence : undefined,
-    crossings: zeros.flatMap((z) => reached(z) ?? []),
-    met: sign === "=" ? [] : stretches(seen, zeros, (v) => v >= 0).map(([a, b]) => ({ from: at(a), to: at(b) })),
-    best: top && reached(top[0]),
-    impossible: stretches(seen, [], Number.isNaN).map(([a, b]) => ({
-      from: at(a),
-      to: at(b),
-      why: whys.get(at(a)) ?? "there is no figure",
+    confidence: sure,
+    crossings: zeros.flatMap(reached),
+    met: sign === "=" ? [] : stretches(seen, zeros, (v) => v >= 0).map(inInput),
+    best: best && reached(best.x)[0],
+    impossible: stretches(first, [], Number.isNaN).map((s) => ({
+      ...inInput(s),
+      why: whys.get(s.from) ?? "there is no figure",
     })),
     draws: rows.length,
     stopped,
   };
 }
 
+/** The grid with a peak that it steps over, and of `=` a trough as well. */
+function looked(f: (x: number) => number, grid: readonly Looked[], sign: Aim["sign"]): Looked[] {
+  const tolerance = 1e-6;
+  const up = withPeak(f, grid, tolerance);
+  if (sign !== "=") return up;
+  const turned = up.map(({ x, value }) => ({ x, value: -value }));
+  return withPeak((x) => -f(x), turned, tolerance).map(({ x, value }) => ({ x, value: -value }));
+}
+
+/**
+ * Looks again, over the draws, where the middle values meet the aim, one point of the grid further on both sides; nowhere else
+ * do nine in ten draws meet it. Where none does, at the best point alone.
+ */
+function overStretches(first: readonly Looked[], f: (x: number) => number): Looked[] {
+  const met = stretches(first, [], (v) => v >= 0);
+  if (met.length === 0) {
+    const whole = first.filter((p) => !Number.isNaN(p.value));
+    const best = whole.reduce<Looked | undefined>((a, b) => (!a || b.value > a.value ? b : a), undefined);
+    return best ? [{ x: best.x, value: f(best.x) }] : [];
+  }
+  const places = met.flatMap(({ from, to }) => {
+    const [before, after] = [first.findIndex((p) => p.x === from) - 1, first.findIndex((p) => p.x === to) + 1];
+    return [
+      ...(first[before] ? [first[before].x] : []),
+      ...(from === to ? [from] : spaced(from, to, looksOverDraws, false)),
+      ...(first[after] ? [first[after].x] : []),
+    ];
+  });
+  return [...new Set(places)].sort((a, b) => a - b).map((x) => ({ x, value: f(x) }));
+}
+
 /** What a share of the draws keeps: at least, or with `<=` at most. NaN where a tenth of the draws or more give no figure. */
-function keptBy(drawn: readonly number[], confidence: number, sign: Aim["sign"]): number {
+function keptBy(drawn: readonly number[], confidence: number, sign: ">=" | "<="): number {
   const sorted = drawn.filter((v) => !Number.isNaN(v)).sort((a, b) => a - b);
-  if (sorted.length < 0.9 * drawn.length || sorted.length < 20) return Number.NaN;
+  if (sorted.length < 0.9 * drawn.length || sorted.length < fewestDraws) return Number.NaN;
   return quantile(sorted, sign === "<=" ? confidence : 1 - confidence);
 }
 
+const fewestDraws = 20;
+
 const squashed = (x: number, scale: number): number =>
   Number.isFinite(x) ? x / (Math.abs(x) + scale) : Number.isNaN(x) ? x : Math.sign(x);
-
-/** Runs of points that are so, their ends carried to the zeros that lie between them and their neighbours. */
-function stretches(
-  seen: readonly (readonly [share: number, value: number])[],
-  zeros: readonly number[],
-  so: (value: number) => boolean,
-): [number, number][] {
-  const found: [number, number][] = [];
-  for (let k = 0; k < seen.length; k++) {
-    if (!so(seen[k][1])) continue;
-    const first = k;
-    while (k + 1 < seen.length && so(seen[k + 1][1])) k++;
-    const before = first > 0 ? zeros.find((z) => z >= seen[first - 1][0] && z <= seen[first][0]) : undefined;
-    const after = k + 1 < seen.length ? zeros.find((z) => z >= seen[k][0] && z <= seen[k + 1][0]) : undefined;
-    found.push([before ?? seen[first][0], after ?? seen[k][0]]);
-  }
-  return found;
-}

@@ -1,11 +1,8 @@
 import { compile } from "../compile/compile.js";
-import { evaluateNames } from "../compile/evaluate.js";
-import type { Settings } from "../compile/plant.js";
 import type { Duty } from "../model/duty.js";
 import type { ChangeDocument } from "../model/study.js";
-import { applyChange } from "./change.js";
+import { changedVessel } from "./changed.js";
 import { betterIs } from "./direction.js";
-import { declaredDraws, declaredNames } from "./draws.js";
 import type { RivalDraws } from "./draws-of.js";
 import { type Operation, operate } from "./operate.js";
 import type { ChangedFigure, ChangeOutcome, Ranked } from "./result.js";
@@ -26,25 +23,14 @@ export function changeOutcomes(
 ): ChangeOutcome {
   const { rival, fit } = ranked;
   const left = (skipped: string): ChangeOutcome => ({ change, rival, skipped, plant: undefined, figures: [] });
-  const changed = applyChange(rival, change);
+  const changed = changedVessel(rival, change, fit?.values ?? {});
   if ("skipped" in changed) return left(changed.skipped);
-  const keep = (settings: Settings): Settings =>
-    Object.fromEntries(Object.entries(settings).filter(([name]) => !changed.sets.has(name)));
-  const { plant, problems } = compile(changed.network, keep(fit?.values ?? {}));
+  const { plant, problems } = compile(changed.network, changed.values);
   if (!plant) return left(problems[0]?.message ?? "the changed vessel does not balance");
-  // What the change brings or sets has a `±` of its own.
-  const own = new Set(rival.network.names.map((n) => n.name));
-  const env = evaluateNames(changed.network, keep(fit?.values ?? {}));
-  const brought = declaredNames(changed.network, undefined).filter((n) => !own.has(n.name) || changed.sets.has(n.name));
-  const varied = declaredDraws(
-    brought.map((n) => ({ name: n.name, value: env[n.slot], sd: n.value.sd?.(env) ?? 0 })),
-    draws.settings.length,
-    seed,
-  );
-  const after = draws.settings.map((settings, i) => ({ ...keep(settings), ...varied[i] }));
+  const after = changed.drawn(draws.settings, seed);
   const figures = [...present].flatMap(([duty, sample]): ChangedFigure[] => {
     const today = sample.operation;
-    const then: Operation = { ...today, network: changed.network, values: keep(today.values) };
+    const then: Operation = { ...today, network: changed.network, values: changed.values };
     const [old, now] = [operate(today).figures, operate(then).figures];
     if (!old || !now) return [];
     const was = sample.values;

@@ -2,14 +2,17 @@ import type { Plant } from "../compile/plant.js";
 import type { MomentsResult } from "../data/moments.js";
 import type { Fit } from "../fit/result.js";
 import type { Duty } from "../model/duty.js";
-import type { ChangeDocument, Rival, Study } from "../model/study.js";
+import type { AimAsked, ChangeDocument, Rival, Study, SweepAsked } from "../model/study.js";
 import type { Trial } from "../model/trial.js";
 import type { Problem } from "../problems/problem.js";
 import type { SteadyState } from "../reaction/steady.js";
 import type { Unit } from "../units/unit.js";
+import type { AimResult } from "./aim.js";
+import type { Answered } from "./asked.js";
 import type { Standing } from "./rank.js";
 import type { Residence } from "./residence.js";
 import type { Spread } from "./spread-shares.js";
+import type { Sweep } from "./sweep.js";
 
 /** Everything that a study found out. SI, with units for people beside. */
 export interface StudyResult {
@@ -21,6 +24,9 @@ export interface StudyResult {
   /** Every duty for the best rival, and for the others that survive. */
   readonly predictions: readonly Prediction[];
   readonly changes: readonly ChangeOutcome[];
+  /** For every rival that survives, in the order of the ranking. */
+  readonly sweeps: readonly Answered<SweepAsked, Sweep>[];
+  readonly aims: readonly Answered<AimAsked, AimResult>[];
   /** Of the best rival. */
   readonly residence: Residence | undefined;
   /** Draws that intervals rest on. */

@@ -3,7 +3,8 @@ import { readMoments } from "../data/moments.js";
 import { type FitOptions, fit } from "../fit/fit.js";
 import { withKinetics } from "../fit/kinetics.js";
 import type { Duty } from "../model/duty.js";
-import type { Rival, Study } from "../model/study.js";
+import type { Asked, Rival, Study } from "../model/study.js";
+import { type Answered, aimAsked, sweepAsked } from "./asked.js";
 import { changeOutcomes } from "./compare.js";
 import { drawsOf, type RivalDraws } from "./draws-of.js";
 import { operationOf } from "./operation.js";
@@ -12,6 +13,7 @@ import { standings, survives } from "./rank.js";
 import { residenceOf } from "./residence.js";
 import type { Ranked, StudyResult } from "./result.js";
 import { type Sample, sampleOf } from "./sample.js";
+import type { Watch } from "./sweep.js";
 import { momentsFacts } from "./trial-facts.js";
 
 export interface StudyOptions {
@@ -71,11 +73,25 @@ export function runStudy(study: Study, options: StudyOptions = {}): StudyResult 
   );
   const changes = alive.flatMap((r, i) =>
     study.changes.flatMap((change) => {
-      tell({ stage: "comparing", what: change.title, done: 0.9 + (0.1 * i) / alive.length });
+      tell({ stage: "comparing", what: change.title, done: 0.9 + (0.05 * i) / alive.length });
       const present = samples.get(r.rival) ?? new Map<Duty, Sample>();
       return cancelled() ? [] : [changeOutcomes(r, change, present, draws.get(r.rival) as RivalDraws, study.seed)];
     }),
   );
+  const asking = <A extends Asked, R>(
+    what: string,
+    list: readonly A[],
+    answer: (study: Study, r: Ranked, asked: A, draws: RivalDraws, watch: Watch) => Answered<A, R>,
+  ): Answered<A, R>[] =>
+    alive.flatMap((r, i) =>
+      list.flatMap((asked) => {
+        tell({ stage: what, what: asked.duty.title, done: 0.95 + (0.05 * i) / alive.length });
+        if (cancelled()) return [];
+        return [answer(study, r, asked, draws.get(r.rival) as RivalDraws, { cancelled })];
+      }),
+    );
+  const sweeps = asking("sweeping", study.sweeps, sweepAsked);
+  const aims = asking("aiming", study.aims, aimAsked);
   const best = alive[0];
   return {
     study,
@@ -83,6 +99,8 @@ export function runStudy(study: Study, options: StudyOptions = {}): StudyResult 
     readings,
     predictions,
     changes,
+    sweeps,
+    aims,
     residence: best?.plant && !cancelled() ? residenceOf(best.plant, draws.get(best.rival)?.settings ?? []) : undefined,
     draws: Math.min(count, ...[...draws.values()].map((d) => d.settings.length)),
     stopped: cancelled() ? "cancelled" : undefined,

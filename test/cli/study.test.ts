@@ -1,5 +1,5 @@
 import { describe, expect, test } from "vitest";
-import { at, backmix, json } from "./fake.js";
+import { at, backmix, type Json, json } from "./fake.js";
 import { tank, tube, files as vessels } from "./vessels.js";
 
 const files = {
@@ -95,5 +95,50 @@ describe("study", () => {
     expect(paths).toEqual(
       "study.yaml tank.yaml row.yaml pulse.yaml pulse.csv duty.yaml decay.yaml larger.yaml other.yaml".split(" "),
     );
+  });
+});
+
+describe("sweeps and aims of a study", () => {
+  const asking = {
+    ...files,
+    "study.yaml": `${files["study.yaml"]}sweeps:
+  - {duty: duty.yaml, over: {feed.flow: {between: [5 L/min, 20 L/min], points: 3, spacing: log}}}
+  - {duty: duty.yaml, change: larger.yaml, over: {k: {between: [0.1 1/min, 0.2 1/min], points: 2}}}
+  - {duty: duty.yaml, change: other.yaml, over: {k: {between: [0.1 1/min, 0.2 1/min], points: 2}}}
+aims:
+  - {duty: duty.yaml, aim: conversion of A = 50 %, by: feed.flow, between: [1 L/min, 20 L/min]}
+  - {duty: duty.yaml, aim: conversion of A >= 99 %, by: feed.flow, between: [1 L/min, 20 L/min], confidence: 90 %}
+`,
+  };
+
+  test("are answered by the fitted vessel, with a change where one is named, and what cannot be asked is skipped", async () => {
+    const { status, document } = await json(["study", "study.yaml"], { files: asking });
+    expect(status).toBe(0);
+    const best = (key: string) =>
+      (at(document, key) as unknown as Json[]).filter((x) => at(x, "network") === "tank.yaml");
+    const [flow, larger, other] = best("sweeps");
+    // 80 L at 5, 10, 20 L/min; with the change 200 L at 10 L/min.
+    [1.6, 0.8, 0.4].forEach((x, k) => {
+      expect(at(flow, `points.${k}.figures.0.value`)).toBeCloseTo(x / (1 + x), 3);
+    });
+    [2, 4].forEach((x, k) => {
+      expect(at(larger, `points.${k}.figures.0.value`)).toBeCloseTo(x / (1 + x), 9);
+    });
+    expect(at(larger, "change")).toBe("Larger");
+    expect(at(other, "skipped")).toMatch(/riser/);
+    const [half, most] = best("aims");
+    expect(at(half, "crossings.0.value")).toBeCloseTo(8, 1);
+    expect(at(half, "crossings.0.figure.value")).toBeCloseTo(0.5, 9);
+    expect(at(most, "reachable")).toBe(false);
+    expect(at(most, "best.value")).toBeCloseTo(1, 9);
+  });
+
+  test("stand on the page, in the summary and on the terminal", async () => {
+    const { out, written } = await backmix(["study", "study.yaml"], { files: asking });
+    expect(out).toContain("conversion of A = 50 % at feed.flow = ");
+    expect(out).toContain("Infeasible: no feed.flow from 1 L/min to 20 L/min gives conversion of A >= 99 %");
+    expect(written.get("made/report.html")).toContain('<section id="aims"><h2>What it takes</h2>');
+    expect(written.get("made/report.html")).toContain('id="figure-sweep-1"');
+    expect(written.get("made/summary.md")).toContain("**What it takes**");
   });
 });

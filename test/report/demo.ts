@@ -217,6 +217,36 @@ export const demo: StudyReport = {
       skipped: "not tried for corner",
     },
   ],
+  sweeps: [
+    {
+      name: "sweep-1",
+      ...plotCurves(
+        {
+          title: "Normal production over feed.flow",
+          x: "feed.flow, L/min",
+          y: "conversion of A, %",
+          free: true,
+          lines: [
+            {
+              label: "conversion of A",
+              unnamed: true,
+              x: [5, 10, 15],
+              y: [88, 82.3, 78],
+              band: { low: [87, 80.1, 75], high: [89, 84.2, 80] },
+            },
+          ],
+        },
+        { untitled: true },
+      ),
+      caption: "Normal production over feed.flow; the band holds 95 % of what is possible.",
+    },
+  ],
+  aims: [
+    {
+      question: "conversion of A >= 80 % by feed.flow, Normal production",
+      says: ["conversion of A >= 80 % where feed.flow is up to 12.5 L/min (looked at 5 L/min to 15 L/min)."],
+    },
+  ],
   assumptions: ["steady flow during the test", "the tracer follows the liquid"],
   cautions: { heat: true, extrapolated: ["feed 11.5 L/min, tested up to 10 L/min"] },
   tested: ["feed 10 L/min, 21 degC, one salt pulse of 50 g"],

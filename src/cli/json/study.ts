@@ -1,9 +1,12 @@
+import type { Asked } from "../../model/study.js";
+import type { Answered } from "../../study/asked.js";
 import type { Bounds, ChangedFigure, ChangeOutcome, Prediction, Ranked, StudyResult } from "../../study/result.js";
 import type { Spread } from "../../study/spread-shares.js";
 import { inUnit, type Unit } from "../../units/unit.js";
 import { fitJson } from "./fit.js";
 import { momentsResultJson } from "./moments.js";
 import { finite, pure, quantity } from "./quantity.js";
+import { aimJson, sweepJson } from "./sweep.js";
 
 /** What a study found, without the path of its report. */
 export function studyJson(result: StudyResult): Record<string, unknown> {
@@ -17,6 +20,8 @@ export function studyJson(result: StudyResult): Record<string, unknown> {
     readings: result.readings.map(({ trial, moments }) => ({ trial: trial.title, ...momentsResultJson(moments) })),
     predictions: result.predictions.map(predictionJson),
     changes: result.changes.flatMap(changeJson),
+    sweeps: result.sweeps.map((a) => ({ ...askedJson(a), ...(a.found ? sweepJson(a.found) : { skipped: a.skipped }) })),
+    aims: result.aims.map((a) => ({ ...askedJson(a), ...(a.found ? aimJson(a.found) : { skipped: a.skipped }) })),
     findings: [
       ...result.readings.flatMap(({ trial, moments }) => moments.findings.map((f) => ({ trial: trial.title, ...f }))),
       ...result.ranking.flatMap(({ rival, fit }) => (fit?.findings ?? []).map((f) => ({ network: rival.path, ...f }))),
@@ -106,6 +111,13 @@ const changedJson = ({
   interval95: intervalJson(interval95, unit),
   difference95: difference95 ? difference95.map((v) => pure(v / unit.factor).value) : null,
   probabilityBetter: probabilityBetter ?? null,
+});
+
+/** What a sweep or an aim is asked of. */
+const askedJson = ({ asked, rival }: Answered<Asked, unknown>): object => ({
+  network: rival.path,
+  duty: asked.duty.title,
+  change: asked.change?.title ?? null,
 });
 
 const intervalJson = (interval: readonly [number, number] | undefined, unit: Unit): (number | null)[] | null =>

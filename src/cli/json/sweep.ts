@@ -5,10 +5,8 @@ import { finite, type QuantityJson, quantity, series, unitName } from "./quantit
 import { reportedJson } from "./steady.js";
 
 /** A sweep: its inputs, then every point with its figures, or why there are none. Conversion, yield and selectivity are fractions. */
-export function sweepJson({ operation, axes, points, draws, stopped }: Sweep): Record<string, unknown> {
+export function sweepJson({ axes, points, draws, stopped }: Sweep): Record<string, unknown> {
   return {
-    network: operation.network.title,
-    duty: operation.duty.title,
     over: axes.map(({ input, values }) => ({ name: input.name, ...series(values, input.unit) })),
     points: points.map(({ at, figures, cannot, intervals }) => ({
       at: at.map((v, k) => quantity(v, axes[k].input.unit)),

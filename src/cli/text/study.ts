@@ -2,6 +2,7 @@ import type { Fit } from "../../fit/result.js";
 import type { Problem } from "../../problems/problem.js";
 import { chance, estimateLine } from "../../report/digits.js";
 import type { AnswerLine } from "../../report/input.js";
+import { reportAims } from "../../report/study/asked.js";
 import type { StudyResult } from "../../study/result.js";
 import { formatNumber } from "../../units/format.js";
 import { inUnit, type Unit } from "../../units/unit.js";
@@ -20,6 +21,7 @@ export function studyText(result: StudyResult, answer: readonly AnswerLine[], re
     rankingTable(result),
     predictionsTable(result),
     changesTable(result),
+    aimsText(result),
     report === undefined ? "" : `report: ${report}`,
   );
 }
@@ -88,6 +90,13 @@ function changesTable({ changes }: StudyResult): string {
     [{ title: "change" }, { title: "figure" }, right("today"), { title: "value (95 %)" }, right("chance of better")],
     rows,
   );
+}
+
+/** Each aim with its answer. */
+function aimsText(result: StudyResult): string {
+  return reportAims(result)
+    .map(({ question, says }) => [wrap("  ", question), ...says.map((s) => wrap("    ", s))].join("\n"))
+    .join("\n");
 }
 
 /** A row, and the rival that says so. */

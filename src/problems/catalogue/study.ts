@@ -21,7 +21,31 @@ export const studyEntries = {
     severity: "error",
     says: ({ text }) => `'${text}' is no aim`,
     fix: "write a figure as in `report:`, one of `=`, `>=`, `<=`, and a value: `conversion of A >= 95 %`",
-    example: { text: "95 % conversion" },
+  }),
+  "sweep-inputs": entry<{ count: number }>({
+    severity: "error",
+    says: ({ count }) => `a sweep goes over one or two inputs, not over ${count}`,
+    fix: "name one or two under `over`: `over: {feed.flow: {between: [5 L/min, 15 L/min]}}`",
+  }),
+  "range-ends": entry<{ name: string }>({
+    severity: "error",
+    says: ({ name }) => `the range of '${name}' does not rise`,
+    fix: "write the lower end first: `between: [5 L/min, 15 L/min]`",
+  }),
+  "range-log": entry<{ name: string }>({
+    severity: "error",
+    says: ({ name }) => `'${name}' cannot go in equal ratios from a lower end that is not above 0`,
+    fix: "take a lower end above 0, or `spacing: linear`",
+  }),
+  "range-missing": entry<{ name: string }>({
+    severity: "error",
+    says: ({ name }) => `nothing says between what '${name}' may move`,
+    fix: "write `between: [LOW, HIGH]` beside it; only parameters have bounds of their own",
+  }),
+  "bad-confidence": entry<{ text: string }>({
+    severity: "error",
+    says: ({ text }) => `'${text}' is no confidence`,
+    fix: "write a share from 50 % to below 100 %, such as `90 %`",
   }),
   "per-trial-duty": entry<{ name: string; duty: string }>({
     severity: "error",

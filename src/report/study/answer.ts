@@ -1,6 +1,7 @@
 import type { ChangedFigure, ChangeOutcome, StudyResult } from "../../study/result.js";
 import { chance, estimateLine } from "../digits.js";
 import type { AnswerLine } from "../input.js";
+import { aimWords } from "./aim-words.js";
 import { spreadWords } from "./driver-words.js";
 import { differenceEstimate, estimate, readingUnit } from "./estimate.js";
 import { traitsOf } from "./traits.js";
@@ -22,6 +23,7 @@ export function answerOf(result: StudyResult): AnswerLine[] {
     { about: "How sure", says: sure(result) },
     ...makes(result).map((says) => ({ about: "What it makes", says })),
     ...bestChange(result).map((says) => ({ about: "What to do", says })),
+    ...takes(result).map((says) => ({ about: "What it takes", says })),
     ...measure(result).map((says) => ({ about: "What to measure", says })),
     { about: "Still open", says: open(result) },
   ];
@@ -83,6 +85,19 @@ function bestChange(result: StudyResult): string[] {
   const sure = f.probabilityBetter === undefined ? "" : `; chance of being better ${chance(f.probabilityBetter)}`;
   return [`${none}${c.change.title}: ${f.name} from ${now} to ${then}, by ${by}${sure}.`];
 }
+
+/** The first aims, by the best rival. */
+function takes(result: StudyResult): string[] {
+  const own = result.aims.filter((a) => a.rival === result.ranking[0].rival);
+  return own.slice(0, mostAims).flatMap(({ found, asked }) => {
+    if (!found) return [];
+    const change = asked.change ? ` With '${asked.change.title}'.` : "";
+    return [`${asked.duty.title}: ${aimWords(found)[0]}${change}`];
+  });
+}
+
+/** More would hide the answer; the others have their section. */
+const mostAims = 2;
 
 /** Of the first figure of the first duty: what holds its uncertainty. */
 function measure(result: StudyResult): string[] {

@@ -13,6 +13,7 @@ import type {
   StudyReport,
 } from "../input.js";
 import { answerOf } from "./answer.js";
+import { reportAims, sweepFigures, sweepsSkipped } from "./asked.js";
 import { dataQuality, findingsOf } from "./data.js";
 import { driverName, methodWords, spreadWords } from "./driver-words.js";
 import { estimate, parameterEstimate, readingUnit } from "./estimate.js";
@@ -35,6 +36,7 @@ export function reportOf(
   const identifiability = best?.fit ? identifiabilityOf(best) : { says: [], correlations: [], figures: [] };
   const { findings, notSupported } = findingsOf(result);
   const tested = testedFlows(result.study);
+  const sweeps = sweepFigures(result);
   const report: StudyReport = {
     title: result.study.title,
     answer: answerOf(result),
@@ -51,12 +53,21 @@ export function reportOf(
     residence,
     predictions: result.predictions.filter((p) => p.rival === best?.rival).map(predictionRow),
     changes: changeRows(result),
+    sweeps,
+    aims: reportAims(result),
     assumptions: assumptionsOf(result),
     cautions: cautionsOf(result, tested.extrapolated),
     tested: tested.lines,
     provenance: { ...provenance, seed: result.study.seed },
   };
-  const figures = [...(vessel ? [vessel] : []), ...curves, ...rivalCurves, ...identifiability.figures, ...residence];
+  const figures = [
+    ...(vessel ? [vessel] : []),
+    ...curves,
+    ...rivalCurves,
+    ...identifiability.figures,
+    ...residence,
+    ...sweeps,
+  ];
   return { report, figures };
 }
 
@@ -152,6 +163,7 @@ function assumptionsOf(result: StudyResult): string[] {
     `Predictions rest on ${result.draws} draws${lost > 0 ? "; only networks with a weight above 5 % were taken further" : ""}.`,
     "A change keeps every fitted value but those that it sets itself.",
     ...skipped,
+    ...sweepsSkipped(result),
   ];
 }
 

@@ -1,0 +1,57 @@
+import type { Asked } from "../../model/study.js";
+import type { Answered } from "../../study/asked.js";
+import type { StudyResult } from "../../study/result.js";
+import type { Figure, ReportAim } from "../input.js";
+import { aimWords } from "./aim-words.js";
+import { plotSweep } from "./sweep-figure.js";
+
+/** "(with Second tank; by 'R-12')": what an answer is about beside the duty, where it is not the vessel as it is. */
+function about(result: StudyResult, { asked, rival }: Answered<Asked, unknown>): string {
+  const several = result.ranking.filter((r) => r.survives).length > 1;
+  const parts = [
+    ...(asked.change ? [`with '${asked.change.title}'`] : []),
+    ...(several ? [`by '${rival.network.title}'`] : []),
+  ];
+  return parts.length === 0 ? "" : ` (${parts.join("; ")})`;
+}
+
+/** A figure for every sweep of every surviving rival. */
+export function sweepFigures(result: StudyResult): Figure[] {
+  return result.sweeps.flatMap((answer, k): Figure[] => {
+    const { found, asked } = answer;
+    if (!found?.points.some((p) => p.figures)) return [];
+    const names = asked.over.map((r) => r.name).join(" and ");
+    const left = found.points.filter((p) => p.cannot !== undefined);
+    const gaps =
+      left.length > 0 ? ` ${left.length} of ${found.points.length} points are left out: ${left[0].cannot}.` : "";
+    const band = found.axes.length === 1 && found.draws > 0 ? "; the band holds 95 % of what is possible" : "";
+    return [
+      {
+        name: `sweep-${k + 1}`,
+        ...plotSweep(found, { untitled: true }),
+        caption: `${asked.duty.title} over ${names}${about(result, answer)}${band}.${gaps}`,
+      },
+    ];
+  });
+}
+
+/** Aims with their answers, in the order of the study, and sweeps and aims that could not be asked. */
+export function reportAims(result: StudyResult): ReportAim[] {
+  return result.aims.map((answer): ReportAim => {
+    const { found, asked, skipped } = answer;
+    return {
+      question: `${asked.aim.text} by ${asked.by.name}, ${asked.duty.title}${about(result, answer)}`,
+      says: found ? aimWords(found) : [`Left out: ${skipped}.`],
+    };
+  });
+}
+
+/** Sweeps that could not be made. */
+export const sweepsSkipped = (result: StudyResult): string[] =>
+  result.sweeps.flatMap(({ skipped, asked, rival }) =>
+    skipped === undefined
+      ? []
+      : [
+          `The sweep over ${asked.over.map((r) => r.name).join(" and ")} was left out for '${rival.network.title}': ${skipped}`,
+        ],
+  );
