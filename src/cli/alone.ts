@@ -1,6 +1,5 @@
 import { Worker } from "node:worker_threads";
 import { type ExitStatus, files, type Io, onInterrupt, streams, terminal } from "./io.js";
-import { tellFault } from "./run.js";
 
 /** What the working thread tells the one that listens. */
 export type Message = { readonly out: string } | { readonly err: string } | { readonly end: ExitStatus };
@@ -12,6 +11,9 @@ export interface WorkerData extends Pick<Io, "isTerminal" | "colour"> {
   readonly flag: Int32Array;
 }
 
+/** Young memory of a thread that computes, MB: what a fit needs for a moment is then seldom moved about. */
+const maxYoungGenerationSizeMb = 64;
+
 /**
  * Runs a command line in a thread of its own. The first interrupt asks it to come to an end and print what it has; a
  * second one ends it at once.
@@ -19,7 +21,7 @@ export interface WorkerData extends Pick<Io, "isTerminal" | "colour"> {
 export function runAlone(args: readonly string[], script: URL): Promise<ExitStatus> {
   const flag = new Int32Array(new SharedArrayBuffer(4));
   const data: WorkerData = { args, cwd: process.cwd(), flag, ...terminal() };
-  const worker = new Worker(script, { workerData: data });
+  const worker = new Worker(script, { workerData: data, resourceLimits: { maxYoungGenerationSizeMb } });
   const interrupted = (): void => {
     if (Atomics.exchange(flag, 0, 1) === 0) streams.err("\nbackmix: stopping; again to end at once\n");
     else process.exit(130);
@@ -33,7 +35,9 @@ export function runAlone(args: readonly string[], script: URL): Promise<ExitStat
       else status = m.end;
     });
     worker.on("error", (e) => {
-      status = tellFault(e, args, { ...files(data.cwd), ...terminal(), ...streams, cancelled: () => false });
+      // What words a fault is loaded where there is one: this thread has nothing to do but to listen.
+      const io = { ...files(data.cwd), ...terminal(), ...streams, cancelled: () => false };
+      status = import("./run.js").then(({ tellFault }) => tellFault(e, args, io));
     });
     worker.on("exit", () => {
       listenNoMore();

@@ -1,5 +1,5 @@
 import { bandedSolver } from "./banded-lu.js";
-import { type CollocationMesh, stageCount as s, slopes } from "./collocation.js";
+import { type CollocationMesh, collocation, stageCount as s } from "./collocation.js";
 import { denseSolver } from "./dense-lu.js";
 import { fullPattern, type LinearSolver, type Pattern } from "./linear-solver.js";
 
@@ -99,6 +99,7 @@ export class BoundaryNewton {
   /** sum_j inverse_ij (Y_j - y_right) + h f(Y_i), and its norm with that of the conditions. */
   private residual(at: Pick<CollocationMesh, "values" | "end">, g: Float64Array): number {
     const { m, f, problem, mesh } = this;
+    const { slopes } = collocation();
     const { values } = at;
     let sum = 0;
     for (let e = 0; e < this.count; e++) {
@@ -134,6 +135,7 @@ export class BoundaryNewton {
   /** Solves every stretch for its stages, given its right end, and factors what binds the ends. */
   private condense(): boolean {
     const { m, problem, mesh, stage, stageMatrix, slope, through, own, bandMatrix } = this;
+    const { slopes } = collocation();
     const width = s * m;
     const column = new Float64Array(width);
     const nLeft = problem.fed.length;

@@ -1,5 +1,5 @@
 import { BoundaryNewton, type BoundaryProblem } from "./boundary-newton.js";
-import { type CollocationMesh, evaluateAt, leadingLegendre, places, stageCount as s } from "./collocation.js";
+import { type CollocationMesh, collocation, evaluateAt, stageCount as s } from "./collocation.js";
 
 export type { BoundaryProblem };
 
@@ -42,6 +42,7 @@ export function solveBoundary(problem: BoundaryProblem, guess: CollocationMesh):
 
 /** Stretches on which the solution still bends more than the polynomials follow. */
 function unresolved({ size: m, rhs }: BoundaryProblem, { edges, values }: CollocationMesh): number[] {
+  const { leadingLegendre } = collocation();
   const count = edges.length - 1;
   const f = new Float64Array(m);
   const coefficient = new Float64Array(m);
@@ -66,6 +67,7 @@ function unresolved({ size: m, rhs }: BoundaryProblem, { edges, values }: Colloc
 
 /** The same solution with the given stretches cut in two. */
 function halved({ edges, values, end }: CollocationMesh, m: number, which: readonly number[]): CollocationMesh {
+  const { places } = collocation();
   const cut = new Set(which);
   const newEdges: number[] = [edges[0]];
   const newValues: number[] = [];

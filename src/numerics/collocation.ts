@@ -1,3 +1,4 @@
+import { once } from "./once.js";
 import { radauCoefficients } from "./radau-coefficients.js";
 
 /**
@@ -13,23 +14,27 @@ export interface CollocationMesh {
   readonly end: Float64Array;
 }
 
-const { stages, c, inverse } = radauCoefficients(7);
+export const stageCount = 7;
 
-export const stageCount = stages;
-/** Places of the points in a stretch, from its right end (0) to its left end (1). */
-export const places: Float64Array = c;
-/** Slopes at the points of the polynomial through them and the right end: sum over j of slopes[i, j] (y_j - y_right). */
-export const slopes: Float64Array = inverse;
-
-/** Weights of values at the points in the last Legendre coefficient of the polynomial through them. */
-export const leadingLegendre: Float64Array = c.map((x, i) => {
-  // The leading coefficient of the shifted Legendre polynomial of degree 6 is 12! / 6!^2.
-  return c.reduce((product, other, j) => (j === i ? product : product / (x - other)), 1) / 924;
+/** What a stretch is made of; most programs never ask. */
+export const collocation = once(() => {
+  const { c, inverse } = radauCoefficients(stageCount);
+  return {
+    /** Places of the points in a stretch, from its right end (0) to its left end (1). */
+    places: c,
+    /** Slopes at the points of the polynomial through them and the right end: sum over j of slopes[i, j] (y_j - y_right). */
+    slopes: inverse,
+    /** Weights of values at the points in the last Legendre coefficient of the polynomial through them. */
+    leadingLegendre: c.map((x, i) => {
+      // The leading coefficient of the shifted Legendre polynomial of degree 6 is 12! / 6!^2.
+      return c.reduce((product, other, j) => (j === i ? product : product / (x - other)), 1) / 924;
+    }),
+  };
 });
 
 /** The polynomial of a stretch at a place in it, by Lagrange's formula. */
 export function evaluateAt(values: Float64Array, right: Float64Array, m: number, place: number): Float64Array {
-  const nodes = [0, ...c];
+  const nodes = [0, ...collocation().places];
   const result = new Float64Array(m);
   nodes.forEach((x, i) => {
     let weight = 1;
@@ -41,10 +46,11 @@ export function evaluateAt(values: Float64Array, right: Float64Array, m: number,
 
 /** A mesh filled from a function of the place. */
 export function meshOf(edges: Float64Array, m: number, y: (x: number) => ArrayLike<number>): CollocationMesh {
-  const values = new Float64Array((edges.length - 1) * stages * m);
+  const c = collocation().places;
+  const values = new Float64Array((edges.length - 1) * stageCount * m);
   for (let e = 0; e + 1 < edges.length; e++) {
     const h = edges[e + 1] - edges[e];
-    for (let i = 0; i < stages; i++) values.set(Array.from(y(edges[e + 1] - h * c[i])), (e * stages + i) * m);
+    for (let i = 0; i < stageCount; i++) values.set(Array.from(y(edges[e + 1] - h * c[i])), (e * stageCount + i) * m);
   }
   return { edges, values, end: Float64Array.from(Array.from(y(1))) };
 }

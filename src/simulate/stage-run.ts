@@ -1,4 +1,5 @@
 import type { Halt } from "../numerics/odex.js";
+import { once } from "../numerics/once.js";
 import { radauCoefficients } from "../numerics/radau-coefficients.js";
 import { radauIntegrator, type StiffStretch } from "../numerics/stiff.js";
 import type { Kick } from "./arrivals.js";
@@ -9,13 +10,17 @@ import type { Stage } from "./stage.js";
 const relative = 1e-9;
 const absolute = 1e-12;
 const stages = 7;
-const basis = stepBasis(radauCoefficients(stages).c);
+const stepping = once(() => {
+  const basis = stepBasis(radauCoefficients(stages).c);
+  const { places } = basis;
+  /** Parts of a step at which it is tried. */
+  const tried = [places[1] / 2, (places[3] + places[4]) / 2, (places[6] + places[7]) / 2];
+  return { basis, tried };
+});
 /** What is remembered of loops may be off by as many tolerances. */
 const remembered = 10;
 /** Of the time: over so short a step, what comes out of a loop's delay is known only as well as `History` tells times apart. */
 const finest = 1e-11;
-/** Parts of a step at which it is tried. */
-const tried = [basis.places[1] / 2, (basis.places[3] + basis.places[4]) / 2, (basis.places[6] + basis.places[7]) / 2];
 /** First step, in mean times. */
 const first = 1e-6;
 const mostSteps = 1e7;
@@ -60,6 +65,7 @@ export function runStage(stage: Stage, ask: StageAsk, given: (answer: StageAnswe
   const signals = seen.length + loops.length;
   const signal = new Map(seen.map((h, i) => [h.node, i]));
   const inlet = new Map(loops.map((node, i) => [node, seen.length + i]));
+  const { basis, tried } = stepping();
   const history = new History(basis, signals);
   const n = Math.max(1, stage.size);
   const firstLoop = mixing.flux.length - loops.length;
