@@ -73,7 +73,7 @@ export async function fitCommand(file: string, options: FitOptions, { inputs, io
       : undefined;
   const cut = refits !== undefined && refits.done < refits.asked;
   const fitStatus = cut ? 130 : statusOf(outcome.fit, options.strict === true);
-  const writing = options.write ? writeFit(file, network, outcome.fit, fitStatus, io) : undefined;
+  const writing = options.write ? writeFit(file, network, trials, outcome.fit, fitStatus, io) : undefined;
   const status = fitStatus === 0 && writing?.failed ? 1 : fitStatus;
   return {
     status,

@@ -4,7 +4,7 @@ import { isRatio } from "../units/dimension.js";
 import type { Settings } from "./plant.js";
 
 /** Values of all names, SI, one slot each: the file's own, or those in `settings`. */
-export function evaluateNames(network: Network, settings: Settings = {}): Float64Array {
+export function evaluateNames(network: Pick<Network, "names" | "order">, settings: Settings = {}): Float64Array {
   const env = new Float64Array(network.names.reduce((size, n) => Math.max(size, n.slot + 1), 0));
   for (const slot of network.order) {
     const n = network.names[slot]?.slot === slot ? network.names[slot] : network.names.find((m) => m.slot === slot);

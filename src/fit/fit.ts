@@ -191,6 +191,7 @@ export function readingsOf(setup: Setup, { at, problem }: Pick<Settled, "at" | "
     return {
       trial: setup.trials[block.trial].title,
       at: block.declared.at,
+      ...(block.declared.of ? { of: block.declared.of } : {}),
       key: block.key,
       unit: block.declared.unit,
       time: block.time,

@@ -21,8 +21,7 @@ export function withKinetics(network: Network, trials: readonly Trial[]): Networ
   const free = chemistries.flatMap((c) => c.constants.filter((p) => p.free).map((p) => ({ c, p })));
   const taken = [...network.names.map((n) => n.name), ...free.map(({ p }) => p.name)];
   const isAlone = (name: string): boolean => taken.indexOf(name) === taken.lastIndexOf(name);
-  const first = evaluateNames(network).length;
-  const added = free.map(({ c, p }, i): Named => {
+  const added = free.map(({ c, p }): Named => {
     const env = startOf(c);
     const number = (value: Value): Value => {
       const [x, sd] = [value.of(env), value.sd?.(env)];
@@ -31,7 +30,7 @@ export function withKinetics(network: Network, trials: readonly Trial[]): Networ
     const between = p.free?.between;
     return {
       name: isAlone(p.name) ? p.name : `${stemOf(c.path)}.${p.name}`,
-      slot: first + i,
+      slot: -1,
       role: "parameter",
       at: p.at,
       value: number(p.value),
@@ -41,7 +40,14 @@ export function withKinetics(network: Network, trials: readonly Trial[]): Networ
       chemistry: { path: c.path, name: p.name },
     };
   });
-  return { ...network, names: [...network.names, ...added], order: [...network.order, ...added.map((n) => n.slot)] };
+  return joined(network, added);
+}
+
+function joined(network: Network, added: readonly Named[]): Network {
+  if (added.length === 0) return network;
+  const first = evaluateNames(network).length;
+  const own = added.map((named, i) => ({ ...named, slot: first + i }));
+  return { ...network, names: [...network.names, ...own], order: [...network.order, ...own.map((n) => n.slot)] };
 }
 
 const stemOf = (path: string): string => path.slice(path.lastIndexOf("/") + 1).replace(/\.ya?ml$/, "");

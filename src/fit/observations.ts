@@ -1,4 +1,4 @@
-import { concentrationsOf, type Reading, type Trial } from "../model/trial.js";
+import { concentrationsOf, type Reading, readingLabel, type Trial } from "../model/trial.js";
 import type { Unit } from "../units/unit.js";
 
 /** The points of one reading that a fit looks at: calibrated, without what is left out. */
@@ -46,7 +46,7 @@ export function blocksOf(trials: readonly Trial[]): Block[] {
       const dimension = declared.unit.dimension.join();
       let group = groups.findIndex((g) => g.dimension === dimension);
       if (group < 0) group = groups.push({ dimension, unit: declared.unit }) - 1;
-      const plain = `${trial.title}/${declared.at}`;
+      const plain = `${trial.title}/${readingLabel(declared)}`;
       const count = (seen.get(plain) ?? 0) + 1;
       seen.set(plain, count);
       const key = count === 1 ? plain : `${plain} (${count})`;

@@ -1,168 +1,102 @@
 import { compiler } from "../compile/compile.js";
-import type { Plant, Settings } from "../compile/plant.js";
 import { unstirred } from "../compile/unstirred.js";
-import type { Duty } from "../model/duty.js";
 import { isClosed, type Network } from "../model/network.js";
-import type { Reacting, Trial } from "../model/trial.js";
+import type { Reading, Trial } from "../model/trial.js";
 import type { Problem } from "../problems/problem.js";
 import { problem } from "../problems/report.js";
-import { constantsOf } from "../reaction/constants.js";
-import { followFlask } from "../reaction/flask.js";
+import { type FlaskMove, followFlask } from "../reaction/flask.js";
 import { steadyState } from "../reaction/steady.js";
-import type { ForwardModel, WantedTimes } from "./forward.js";
-import { constantsIn } from "./kinetics.js";
-import { type Respond, slopesBy } from "./reacting-slopes.js";
-import { settingsOfDay } from "./settings.js";
-
-const unmoved: ReadonlyMap<string, number> = new Map();
-
-type Compile = (settings: Settings) => Plant | undefined;
+import type { ForwardModel, Sloped, WantedTimes } from "./forward.js";
+import { movedBy, stepAlong } from "./reacting-moves.js";
+import { dutyOf, flaskOf, type Point, type Scene, sceneMaker } from "./reacting-scene.js";
 
 /**
- * What trials of reactions give, as a forward model: a flask followed in time, a fed vessel where it has settled.
- * Derivatives by central differences of the trial alone.
+ * What trials of reactions give, as a forward model: a flask followed in time with its sensitivity equations, a fed vessel where
+ * it has settled, with central differences.
  * @param network with the parameters of the chemistries among its own
  */
 export function reactingModel(network: Network): ForwardModel {
-  const known = new Map<Network, Compile>();
-  const compileOf = (vessel: Network): Compile => {
-    const found = known.get(vessel);
-    if (found) return found;
-    const { compile } = compiler(vessel);
-    const made: Compile = (settings) => compile(settings).plant;
-    known.set(vessel, made);
-    return made;
-  };
-  const respond: Respond = (trial, values, wanted, day) => {
-    const { reacting } = trial;
-    if (!reacting) return undefined;
-    const constants = constantsOfTrial(network, trial, reacting, values);
-    const vessel = reacting.vessel;
-    const settings: Record<string, number> = vessel
-      ? Object.fromEntries([...trial.with].map(([name, value]) => [name, value.of([])]))
-      : { ...settingsOfDay(network, trial, values) };
-    for (const [name, by] of day) settings[name] = (settings[name] ?? 0) + by;
-    const plant = compileOf(vessel ?? network)(settings);
-    if (!plant || !(vessel ?? network).requires.every((r) => r.slack(plant.env) >= 0)) return undefined;
-    const curves = isClosed(plant)
-      ? inFlask(plant, trial, reacting, constants, wanted)
-      : settled(plant, trial, reacting, constants, wanted);
-    return curves?.every((c) => c.every(Number.isFinite)) ? curves : undefined;
-  };
+  const sceneAt = sceneMaker(network);
   return {
-    respond: (trial, values, wanted) => respond(trial, values, wanted, unmoved),
-    slopes: (trial, at, wanted, directions) => slopesBy(respond, network, trial, at, wanted, directions),
+    respond(trial, values, wanted) {
+      const scene = sceneAt({ trial, values, day: new Map() });
+      const curves = scene && (isClosed(scene.plant) ? flaskCurves(scene, wanted)?.curves : settled(scene, wanted));
+      return curves?.every(finite) ? curves : undefined;
+    },
+    slopes(trial, at, wanted, directions) {
+      const here: Point = { trial, values: at.values, day: new Map() };
+      const scene = sceneAt(here);
+      if (!scene) return undefined;
+      const moves = directions.map((direction) => {
+        const by = stepAlong(network, trial, at, direction);
+        return by === 0
+          ? undefined
+          : { by, above: movedBy(network, here, at, direction, by), below: movedBy(network, here, at, direction, -by) };
+      });
+      if (isClosed(scene.plant)) {
+        const sides = moves.map((m): FlaskMove | undefined => {
+          const [above, below] = [m && sceneAt(m.above), m && sceneAt(m.below)];
+          return m && above && below && { by: m.by, above: flaskOf(above), below: flaskOf(below) };
+        });
+        if (sides.some((side, d) => moves[d] && !side)) return undefined;
+        return flaskCurves(scene, wanted, sides);
+      }
+      const curves = settled(scene, wanted);
+      const settledAt = (point: Point): Float64Array[] | undefined => {
+        const moved = sceneAt(point);
+        return moved && settled(moved, wanted);
+      };
+      const slopes = moves.map((m) => {
+        if (!m) return curves?.map((c) => new Float64Array(c.length));
+        const [above, below] = [settledAt(m.above), settledAt(m.below)];
+        return above && below && above.map((a, r) => a.map((v, i) => (v - below[r][i]) / (2 * m.by)));
+      });
+      return curves && { curves, slopes };
+    },
     delays: () => [],
   };
 }
 
-/** The operating point of a trial, as a duty would have it. */
-const dutyOf = (trial: Trial, { chemistry, at, temperature, feeds, concentrations }: Reacting): Duty => ({
-  title: trial.title,
-  at,
-  path: trial.path,
-  chemistry,
-  flows: new Map(),
-  with: new Map(),
-  settings: new Map(),
-  feeds,
-  temperature,
-  concentrations,
-  report: [],
-});
+const finite = (c: Float64Array): boolean => c.every(Number.isFinite);
 
-/** Constants of the chemistry on the day, SI by name: parameters as set, what the day set otherwise, declared `±` as shifted. */
-function constantsOfTrial(
-  network: Network,
-  trial: Trial,
-  reacting: Reacting,
-  values: Settings,
-): Record<string, number> {
-  const { chemistry, shifted } = reacting;
-  const set = constantsIn(network, chemistry, values);
-  for (const { name } of chemistry.constants) {
-    const value = trial.with.get(name);
-    if (value) set[name] = value.of([]);
-  }
-  if (!shifted || shifted.size === 0) return set;
-  const n = chemistry.species.length;
-  const env = new Float64Array(chemistry.temperatureSlot + 1);
-  for (const [name, deviations] of shifted) {
-    env.set(constantsOf(chemistry, dutyOf(trial, reacting), set), n);
-    const k = chemistry.constants.findIndex((c) => c.name === name);
-    set[name] = env[n + k] + deviations * (chemistry.constants[k].value.sd?.(env) ?? 0);
-  }
-  return set;
+/** What a reading makes of the concentrations everywhere, node by node. */
+function seen({ places, of }: Reading, { plant, reacting }: Scene, c: ArrayLike<number>): number {
+  const n = reacting.chemistry.species.length;
+  let sum = 0;
+  for (const { name, share } of places) sum += share * c[(plant.exit.get(name) ?? 0) * n + (of?.species ?? 0)];
+  return sum * (of?.factor ?? 1);
 }
 
-function settled(
-  plant: Plant,
-  trial: Trial,
-  reacting: Reacting,
-  constants: Record<string, number>,
-  wanted: WantedTimes,
-): Float64Array[] | undefined {
+function settled(scene: Scene, wanted: WantedTimes): Float64Array[] | undefined {
+  const { trial, reacting, plant, constants } = scene;
   const state = steadyState(plant, reacting.chemistry, dutyOf(trial, reacting), constants);
   if (!state.converged) return undefined;
-  const n = state.species.length;
-  return trial.readings.map(({ places, of }, r) => {
-    const c = places.reduce((sum, { name, share }) => {
-      const node = plant.exit.get(name) ?? -1;
-      return sum + share * state.concentrations[node * n + (of?.species ?? 0)];
-    }, 0);
-    return new Float64Array(wanted[r].time.length).fill(c * (of?.factor ?? 1));
-  });
+  return trial.readings.map((reading, r) =>
+    new Float64Array(wanted[r].time.length).fill(seen(reading, scene, state.concentrations)),
+  );
 }
 
-function inFlask(
-  plant: Plant,
-  trial: Trial,
-  reacting: Reacting,
-  constants: Record<string, number>,
+/** Curves of a closed vessel and their derivatives; a direction that moves nothing of it is undefined. */
+function flaskCurves(
+  scene: Scene,
   wanted: WantedTimes,
-): Float64Array[] | undefined {
-  const { chemistry, begins } = reacting;
-  const n = chemistry.species.length;
-  const since = (t: number, { line }: Trial["readings"][number]): number =>
-    Math.max(0, t - begins - (line.delay?.of([]) ?? 0));
+  moves: readonly (FlaskMove | undefined)[] = [],
+): Sloped | undefined {
+  const { trial, reacting } = scene;
+  const since = (t: number, { line }: Reading): number => Math.max(0, t - reacting.begins - (line.delay?.of([]) ?? 0));
   const times = new Set(trial.readings.flatMap((reading, r) => Array.from(wanted[r].time, (t) => since(t, reading))));
   const all = Float64Array.from(times).sort();
-  const states = followFlask(
-    {
-      plant,
-      chemistry,
-      constants: constantsOf(chemistry, dutyOf(trial, reacting), constants),
-      start: startIn(plant, reacting),
-    },
-    all,
-  );
-  if (!states) return undefined;
+  const known = moves.filter((m) => m !== undefined);
+  const course = followFlask(flaskOf(scene), all, known);
+  if (!course) return undefined;
   const index = new Map(Array.from(all, (t, k) => [t, k]));
-  return trial.readings.map((reading, r) => {
-    const { places, of } = reading;
-    return wanted[r].time.map((t) => {
-      const state = states[index.get(since(t, reading)) ?? 0];
-      const mixed = places.reduce(
-        (sum, { name, share }) => sum + share * state[(plant.exit.get(name) ?? 0) * n + (of?.species ?? 0)],
-        0,
-      );
-      return mixed * (of?.factor ?? 1);
-    });
-  });
-}
-
-/** What every body holds at the start: by its own name, that of the row it is a member of, or `all`. */
-function startIn({ columns }: Plant, { chemistry, contents }: Reacting): Float64Array {
-  const n = chemistry.species.length;
-  const start = new Float64Array(columns.size * n);
-  for (let node = 0; node < columns.size; node++) {
-    const name = columns.nameOf(node);
-    const held =
-      contents.get(name) ?? contents.get(name.slice(0, Math.max(0, name.lastIndexOf(".")))) ?? contents.get("all");
-    for (const [species, { value }] of held?.species ?? [])
-      start[node * n + chemistry.species.findIndex((s) => s.name === species)] = value.of([]);
-  }
-  return start;
+  const read = (states: readonly Float64Array[]): Float64Array[] =>
+    trial.readings.map((reading, r) =>
+      wanted[r].time.map((t) => seen(reading, scene, states[index.get(since(t, reading)) ?? 0])),
+    );
+  const still = trial.readings.map((_, r) => new Float64Array(wanted[r].time.length));
+  let next = 0;
+  return { curves: read(course.states), slopes: moves.map((m) => (m ? read(course.slopes[next++]) : still)) };
 }
 
 /** A model that follows tracers by one model and reactions by another. */

@@ -1,4 +1,5 @@
 import type { Settings } from "../compile/plant.js";
+import type { ReadSpecies } from "../model/trial.js";
 import type { Code } from "../problems/report.js";
 import type { Unit } from "../units/unit.js";
 import type { ProfileEnd } from "./profile.js";
@@ -99,6 +100,8 @@ export interface FoundOptimum {
 export interface FittedReading {
   readonly trial: string;
   readonly at: string;
+  /** The species, in a trial of a reaction. */
+  readonly of?: ReadSpecies;
   readonly key: string;
   readonly unit: Unit;
   readonly time: Float64Array;

@@ -60,6 +60,7 @@ export interface Reacting {
 
 /** The species that a reading is of. */
 export interface ReadSpecies {
+  readonly name: string;
   /** Its index in the chemistry. */
   readonly species: number;
   /** From the unit of the rate laws to that of the reading, SI: a molar mass where one is an amount and the other a mass. */
@@ -194,6 +195,10 @@ export interface Calibration {
   /** Change of the concentration at a raw value for one standard deviation of each thing that the standards leave open. */
   readonly doubts: (raw: number) => readonly number[];
 }
+
+/** What a reading is of and where, for people: `base at flask`, or the place alone where it is of the tracer. */
+export const readingLabel = ({ at, of }: { readonly at: string; readonly of?: ReadSpecies | undefined }): string =>
+  of ? `${of.name} at ${at}` : at;
 
 /** The concentration of every point of a reading, SI; undefined for a draft. */
 export const concentrationsOf = ({ stages, series }: Reading): Float64Array | undefined =>

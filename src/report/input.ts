@@ -13,6 +13,8 @@ export interface StudyReport {
   readonly vessel?: Figure;
   /** Measured beside fitted curves, with what is left between them. */
   readonly curves: readonly Figure[];
+  /** Analyses of a vessel that had settled, beside what the fit gives there. */
+  readonly analyses?: readonly Analysis[];
   readonly data: readonly DataQuality[];
   readonly findings: readonly ReportFinding[];
   /** What one might expect but the data do not show. */
@@ -36,6 +38,17 @@ export interface StudyReport {
   /** What was tested: flows, temperatures, dates; one line each. */
   readonly tested: readonly string[];
   readonly provenance: Provenance;
+}
+
+/** One analysis, in its own unit. */
+export interface Analysis {
+  readonly trial: string;
+  /** `A at product`. */
+  readonly of: string;
+  readonly found: string;
+  readonly fitted: string;
+  /** Found less fitted, in standard deviations of the analysis. */
+  readonly deviations: number;
 }
 
 /** One line of the answer, under a few words of what it is about: "How sure". */

@@ -1,5 +1,6 @@
 import { figure, type Html, section } from "./html.js";
 import type { StudyReport } from "./input.js";
+import { analysesTable } from "./sections/analyses.js";
 import { aimsSection, sweepsSection } from "./sections/asked.js";
 import { changesSection } from "./sections/changes.js";
 import { dataSection } from "./sections/data.js";
@@ -13,7 +14,8 @@ import { rivalsSection } from "./sections/rivals.js";
 export const sections: readonly ((report: StudyReport) => Html)[] = [
   ({ vessel }) => section("vessel", "The vessel as fitted", vessel ? [figure(vessel)] : []),
   dataSection,
-  ({ curves }) => section("curves", "Measured and fitted", curves.map(figure)),
+  ({ curves, analyses }) =>
+    section("curves", "Measured and fitted", [...curves.map(figure), analysesTable(analyses ?? [])]),
   findingsSection,
   rivalsSection,
   parametersSection,

@@ -115,7 +115,7 @@ function speciesOf(
       unit: unit.name || "a bare number",
       wanted: nameDimension(wanted),
     });
-  return factor === undefined ? undefined : { species, factor };
+  return factor === undefined ? undefined : { name, species, factor };
 }
 
 /** What a concentration counted as `from` is multiplied by to count as `to`. */

@@ -32,6 +32,11 @@ export interface WrittenBack {
   readonly problems: readonly Problem[];
 }
 
+/** A document whose parameters stand under `parameters:`: a network, or a chemistry. */
+export interface Written extends Pick<Network, "at" | "names" | "order" | "units"> {
+  readonly tree: MapNode;
+}
+
 /**
  * The text of a network with new values of parameters in the place of the old ones. Only the digits of each `value:` are
  * replaced, so that comments, order, quotes, units and a `±` beside the value stay; a rule is replaced by a number in the
@@ -39,7 +44,7 @@ export interface WrittenBack {
  * leave its bounds; six without one. A value that other networks share, in the base of a variant or in a part, is left
  * alone: the new one goes into the network's own `change:`, or into the `with:` of the part.
  */
-export function writeBack(network: Network & { readonly tree: MapNode }, values: readonly NewValue[]): WrittenBack {
+export function writeBack(network: Written, values: readonly NewValue[]): WrittenBack {
   const { report, problems } = collector();
   const { source } = network.at;
   const spans = spansOf(network.tree);
@@ -105,7 +110,7 @@ function spansOf(tree: Tree): Map<number, number> {
   return spans;
 }
 
-function editOf(node: ScalarNode, named: Named, given: NewValue, network: Network) {
+function editOf(node: ScalarNode, named: Named, given: NewValue, network: Written) {
   const { source, from, to } = node.at;
   const raw = source.text.slice(from, to);
   const inset = node.plain ? 0 : 1;
@@ -132,7 +137,7 @@ function plainUnit(e: Expression): Unit | undefined {
   return e.type === "negate" && e.of.type === "number" ? e.of.unit : undefined;
 }
 
-function boundsOf({ between }: Named, network: Network): readonly [number, number] {
+function boundsOf({ between }: Named, network: Written): readonly [number, number] {
   if (!between) return [Number.NEGATIVE_INFINITY, Number.POSITIVE_INFINITY];
   const env = evaluateNames(network);
   return [between[0].of(env), between[1].of(env)];

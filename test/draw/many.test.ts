@@ -31,6 +31,7 @@ const inner = (b: Box): Box => ({ x: b.x + 0.5, y: b.y + 0.5, width: b.width - 1
 
 const folders = [
   "networks/demo",
+  "networks/flask",
   "networks/tour",
   "networks/reuse",
   "networks/washout",

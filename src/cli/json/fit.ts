@@ -27,6 +27,7 @@ export function fitJson(fit: Fit, time: Unit, refits?: Bootstrap): Record<string
     readings: fit.readings.map((r) => ({
       trial: r.trial,
       at: r.at,
+      ...(r.of ? { of: r.of.name, steady: r.of.steady } : {}),
       key: r.key,
       time: series(r.time, time),
       measured: series(r.measured, r.unit),

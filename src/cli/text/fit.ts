@@ -3,6 +3,7 @@ import type { ProfileEnd } from "../../fit/profile.js";
 import type { Resampling } from "../../fit/resample.js";
 import type { Estimate, Fit, FitFinding } from "../../fit/result.js";
 import { formatNumber } from "../../units/format.js";
+import { inUnit } from "../../units/unit.js";
 import { errorText, supported } from "./digits.js";
 import { blocks, table } from "./table.js";
 
@@ -22,6 +23,7 @@ export function fitText(title: string, fit: Fit, refits?: Bootstrap): string {
       `  residual sum of squares ${formatNumber(fit.residualSumOfSquares, 6)}${unit} over ${observations} points, ${freeParameters} unknowns`,
       `  AICc ${formatNumber(fit.aicc, 6)}, BIC ${formatNumber(fit.bic, 6)}, ${evaluations} evaluations`,
     ].join("\n"),
+    analysesTable(fit),
     heldTable(fit),
     fit.findings.map(findingText).join("\n"),
   );
@@ -52,6 +54,22 @@ function parametersTable(fit: Fit): string {
         p.atBound ? `at its ${p.atBound} bound` : "",
       ];
     }),
+  );
+}
+
+/** Analyses of the settled vessel; curves are for pictures. */
+function analysesTable({ readings }: Fit): string {
+  const steady = readings.filter((r) => r.of?.steady);
+  if (steady.length === 0) return "";
+  return table(
+    [{ title: "analysis" }, right("found"), right("fitted"), { title: "unit" }, right("off by (standard deviations)")],
+    steady.map((r) => [
+      r.key,
+      formatNumber(inUnit(r.measured[0], r.unit), 4),
+      formatNumber(inUnit(r.fitted[0], r.unit), 4),
+      r.unit.name,
+      formatNumber(r.residual[0] * r.weight[0], 2),
+    ]),
   );
 }
 

@@ -12,7 +12,7 @@ export function studyFigures(study: Study): Figure[] {
     const time = study.rivals[0]?.network.units.time;
     const start = trial.injections[0]?.start ?? 0;
     const runs = study.rivals.flatMap(({ network, path }) => {
-      const first = asItStands(network, trial)?.[0];
+      const first = asItStands(network, trial)?.find((r) => !r.of?.steady);
       return first ? [{ label: fileName(path), first }] : [];
     });
     if (!time || runs.length === 0) return [];
@@ -24,8 +24,8 @@ export function studyFigures(study: Study): Figure[] {
         ...plotCurves(
           {
             title: trial.title,
-            x: `time since the injection, ${time.name}`,
-            y: `tracer, ${measured.unit.name}`,
+            x: `time since the ${trial.reacting ? "start" : "injection"}, ${time.name}`,
+            y: `${measured.of?.name ?? "tracer"}, ${measured.unit.name}`,
             points: { x, y: measured.measured.map((c) => inUnit(c, measured.unit)) },
             lines: runs.map(({ label, first }) => ({ label, x, y: first.fitted.map((c) => inUnit(c, first.unit)) })),
           },

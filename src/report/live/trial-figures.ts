@@ -3,7 +3,7 @@ import { plotFit } from "../../draw/fit-curve.js";
 import { asItStands } from "../../fit/as-it-stands.js";
 import type { FittedReading } from "../../fit/result.js";
 import type { Network } from "../../model/network.js";
-import type { Trial } from "../../model/trial.js";
+import { readingLabel, type Trial } from "../../model/trial.js";
 import { differenceInUnit, inUnit } from "../../units/unit.js";
 import type { Figure } from "../input.js";
 
@@ -11,7 +11,7 @@ import type { Figure } from "../input.js";
 export function trialFigures(trial: Trial, vessel: Network | undefined): Figure[] {
   const raw = trial.readings.flatMap((r, k): Figure[] => {
     const { series } = r;
-    if (!series) return [];
+    if (!series || r.of?.steady) return [];
     const unit = series.valueUnit;
     const time = vessel?.units.time ?? series.timeUnit;
     const start = trial.injections[0]?.start ?? 0;
@@ -21,8 +21,8 @@ export function trialFigures(trial: Trial, vessel: Network | undefined): Figure[
         name: `reading-${k + 1}`,
         ...plotCurves(
           {
-            title: `${trial.title}: ${r.at}`,
-            x: `time since the injection, ${time.name}`,
+            title: `${trial.title}: ${readingLabel(r)}`,
+            x: `time since the ${trial.reacting ? "start" : "injection"}, ${time.name}`,
             y: `reading, ${unit.name}`,
             lines: [],
             points: { x, y: series.value.map((v) => inUnit(v, unit)), label: `${x.length} readings` },
@@ -39,27 +39,29 @@ export function trialFigures(trial: Trial, vessel: Network | undefined): Figure[
 
 function compared(trial: Trial, { units: { time } }: Network, readings: readonly FittedReading[]): Figure[] {
   const start = trial.injections[0]?.start ?? 0;
-  return readings.map((r, k) => ({
-    name: `vessel-${k + 1}`,
-    ...plotFit(
-      {
-        title: `${trial.title}: ${r.at}`,
-        timeUnit: time.name,
-        value: `tracer, ${r.unit.name}`,
-        lineName: "vessel",
-        readings: [
-          {
-            label: r.at,
-            time: r.time.map((t) => inUnit(t - start, time)),
-            measured: r.measured.map((c) => inUnit(c, r.unit)),
-            fitted: r.fitted.map((c) => inUnit(c, r.unit)),
-            residual: r.residual.map((c) => differenceInUnit(c, r.unit)),
-          },
-        ],
-      },
-      { untitled: true },
-    ),
-    caption:
-      "Cleaned readings and the vessel that the trial names, at the values of its file: nothing is fitted but an open scale or baseline.",
-  }));
+  return readings
+    .filter((r) => !r.of?.steady)
+    .map((r, k) => ({
+      name: `vessel-${k + 1}`,
+      ...plotFit(
+        {
+          title: `${trial.title}: ${readingLabel(r)}`,
+          timeUnit: time.name,
+          value: `${r.of?.name ?? "tracer"}, ${r.unit.name}`,
+          lineName: "vessel",
+          readings: [
+            {
+              label: readingLabel(r),
+              time: r.time.map((t) => inUnit(t - start, time)),
+              measured: r.measured.map((c) => inUnit(c, r.unit)),
+              fitted: r.fitted.map((c) => inUnit(c, r.unit)),
+              residual: r.residual.map((c) => differenceInUnit(c, r.unit)),
+            },
+          ],
+        },
+        { untitled: true },
+      ),
+      caption:
+        "Cleaned readings and the vessel that the trial names, at the values of its file: nothing is fitted but an open scale or baseline.",
+    }));
 }

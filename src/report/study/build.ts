@@ -12,6 +12,7 @@ import type {
   Rival,
   StudyReport,
 } from "../input.js";
+import { analysesOf } from "./analyses.js";
 import { answerOf } from "./answer.js";
 import { reportAims, sweepFigures, sweepsSkipped } from "./asked.js";
 import { dataQuality, findingsOf } from "./data.js";
@@ -42,6 +43,7 @@ export function reportOf(
     answer: answerOf(result),
     ...(vessel ? { vessel } : {}),
     curves,
+    analyses: analysesOf(result),
     data: dataQuality(result),
     findings,
     notSupported,

@@ -5,7 +5,7 @@ import { flowSheet } from "../../draw/flow-sheet.js";
 import { drawNetwork } from "../../draw/network.js";
 import { sheetTable } from "../../draw/sheet-table.js";
 import type { FittedReading } from "../../fit/result.js";
-import type { Trial } from "../../model/trial.js";
+import { readingLabel, type Trial } from "../../model/trial.js";
 import type { Ranked, StudyResult } from "../../study/result.js";
 import { holdUp } from "../../units/basis.js";
 import { dimensions } from "../../units/dimension.js";
@@ -50,7 +50,7 @@ export function curveFigures(result: StudyResult): Figure[] {
   const { fit } = best ?? {};
   if (!fit) return [];
   return result.study.trials.flatMap((trial, k) => {
-    const readings = fit.readings.filter((r) => r.trial === trial.title);
+    const readings = fit.readings.filter((r) => r.trial === trial.title && !r.of?.steady);
     if (readings.length === 0) return [];
     const { time } = best.rival.network.units;
     const start = trial.injections[0]?.start ?? 0;
@@ -62,7 +62,7 @@ export function curveFigures(result: StudyResult): Figure[] {
 export function rivalFigures(result: StudyResult): Figure[] {
   const best = result.ranking[0];
   return result.study.trials.flatMap((trial, k) => {
-    const measured = best?.fit?.readings.find((r) => r.trial === trial.title);
+    const measured = best?.fit?.readings.find((r) => r.trial === trial.title && !r.of?.steady);
     if (!measured) return [];
     return rivalFigure(result, trial, measured, best.rival.network.units.time, trial.injections[0]?.start ?? 0, k);
   });
@@ -74,11 +74,11 @@ function fitFigure(trial: Trial, readings: readonly FittedReading[], time: Unit,
     {
       title: trial.title,
       timeUnit: time.name,
-      value: `tracer, ${unit.name}`,
+      value: `${trial.reacting ? "concentration" : "tracer"}, ${unit.name}`,
       readings: readings.map((r) => {
         const reading = trial.readings.find((x) => x.at === r.at);
         return {
-          label: r.at,
+          label: readingLabel(r),
           time: r.time.map((t) => inUnit(t - start, time)),
           measured: r.measured.map((c) => inUnit(c, unit)),
           fitted: r.fitted.map((c) => inUnit(c, unit)),
@@ -93,7 +93,7 @@ function fitFigure(trial: Trial, readings: readonly FittedReading[], time: Unit,
   return {
     name: `fit-${k + 1}`,
     ...made,
-    caption: `${trial.title}: measured points, the curve fitted to all trials at once, and what is left between them. Time counts from the injection.`,
+    caption: `${trial.title}: measured points, the curve fitted to all trials at once, and what is left between them. Time counts from the ${trial.reacting ? "start" : "injection"}.`,
   };
 }
 
@@ -118,7 +118,7 @@ function rivalFigure(
   k: number,
 ): Figure[] {
   const fitted = result.ranking.flatMap((r) => {
-    const own = r.fit?.readings.find((x) => x.trial === trial.title && x.at === measured.at);
+    const own = r.fit?.readings.find((x) => x.key === measured.key);
     return own ? [{ r, own }] : [];
   });
   if (fitted.length < 2) return [];
@@ -128,7 +128,7 @@ function rivalFigure(
     {
       title: `${trial.title}: rivals`,
       x: `time, ${time.name}`,
-      y: `tracer, ${measured.unit.name}`,
+      y: `${measured.of ? readingLabel(measured) : "tracer"}, ${measured.unit.name}`,
       points: { x, y: shown(measured.measured) },
       lines: fitted.map(({ r, own }, i) => ({ label: shortName(r), x, y: shown(own.fitted), accent: i === 0 })),
     },

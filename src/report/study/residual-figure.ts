@@ -1,6 +1,6 @@
 import { plotResiduals, type ResidualReading } from "../../draw/residuals.js";
 import type { Fit, FittedReading } from "../../fit/result.js";
-import type { Trial } from "../../model/trial.js";
+import { readingLabel, type Trial } from "../../model/trial.js";
 import { inUnit, type Unit } from "../../units/unit.js";
 import type { Figure } from "../input.js";
 
@@ -19,7 +19,7 @@ export function residualFigure(
   const rows = readings.map((r): ResidualReading => {
     const value = r.residual.map((v, i) => (v * r.weight[i]) / sd);
     return {
-      label: r.at,
+      label: readingLabel(r),
       time: r.time.map((t) => inUnit(t - start, time)),
       value,
       autocorrelation: autocorrelation(value, Math.min(mostLags, Math.floor(value.length / 4))),

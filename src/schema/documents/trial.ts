@@ -189,6 +189,17 @@ export const trialShape = record({
     says: "The network that was tested, relative to this file. It is what `moments` and `check` hold the trial against; a network named by a command or a study comes first.",
     example: "v3.yaml",
   },
+  chemistry: {
+    shape: text,
+    says: "The chemistry that was at work, relative to this file: the trial is then of a reaction, not of a tracer. Its `parameters` are estimated by a `fit` of this trial, together with those of the vessel from tracer trials. Where `vessel` names a closed network (a flask), the trial is of that flask, whatever vessel the command or the study fits.",
+    example: "../../shared/chemistry/hydrolysis.yaml",
+  },
+  temperature: {
+    shape: quantity("temperature"),
+    says: "With a `chemistry`: the temperature everywhere, held through the trial. It must be given where a rate depends on it. A `±` (in K) makes it an unknown of the fit, held by that.",
+    example: "25 degC ± 0.5 K",
+    snippet: "25 degC",
+  },
   flows: {
     says: "Flows of the day by feed, where they were not those of the network. A `±` makes a flow an unknown of the fit, held by that. A flow that varied stands in a table: straight between its rows, before the first and after the last as there. Volumes are taken as constant; splits by share follow, fixed flows and exchanges stay, unless an expression makes them follow `feed.flow`. Such a trial is followed by the ode engine; figures that need one flow (recovery, space time) use the mean of the log.",
     example: "{feed: 10 L/min ± 2 %}",
@@ -199,6 +210,11 @@ export const trialShape = record({
     says: "Constants of the network that the day set otherwise, the speed of a stirrer say: numbers, or expressions over names of the network (`half: total / 2`), which have there what the network or the fit gives them.",
     example: "{speed: 90 1/min}",
   },
+  feeds: {
+    says: "With a `chemistry`: what each feed brought, by species. A species that is not named is not there; `{}` is clean liquid. A `±` makes a concentration an unknown of the fit, held by that.",
+    example: "{feed: {A: 1 mol/L ± 1 %, B: 1.2 mol/L}}",
+    shape: named(concentrations, "dotted"),
+  },
   injection: {
     shape: oneOrMore(injection),
     says: "What was put in, where and when. A list for several injections. There is one, or `contents`, or both.",
@@ -208,6 +224,11 @@ export const trialShape = record({
     shape: list(reading),
     says: "Every probe or set of samples, each with its table. Without a `file` it is a draft: nothing can be fitted to it. Only a trial with `steady` analyses may be without readings.",
     example: "[{at: product, file: v3-salt.csv, time: {column: t, unit: min}, value: {column: c, unit: g/L}}]",
+  },
+  steady: {
+    says: "With a `chemistry`: analyses of a vessel that had settled, each with its `±`.",
+    example: "[{at: product, of: A, value: 0.12 mol/L ± 0.01 mol/L}]",
+    shape: list(analysis),
   },
   tracer: {
     says: "What the tracer does that the liquid does not.",
@@ -234,27 +255,6 @@ export const trialShape = record({
         example: "{packing: 1.4}",
       },
     }),
-  },
-  chemistry: {
-    shape: text,
-    says: "The chemistry that was at work, relative to this file: the trial is then of a reaction, not of a tracer. Its `parameters` are estimated by a `fit` of this trial, together with those of the vessel from tracer trials. Where `vessel` names a closed network (a flask), the trial is of that flask, whatever vessel the command or the study fits.",
-    example: "../../shared/chemistry/hydrolysis.yaml",
-  },
-  temperature: {
-    shape: quantity("temperature"),
-    says: "With a `chemistry`: the temperature everywhere, held through the trial. It must be given where a rate depends on it. A `±` (in K) makes it an unknown of the fit, held by that.",
-    example: "25 degC ± 0.5 K",
-    snippet: "25 degC",
-  },
-  feeds: {
-    says: "With a `chemistry`: what each feed brought, by species. A species that is not named is not there; `{}` is clean liquid. A `±` makes a concentration an unknown of the fit, held by that.",
-    example: "{feed: {A: 1 mol/L ± 1 %, B: 1.2 mol/L}}",
-    shape: named(concentrations, "dotted"),
-  },
-  steady: {
-    says: "With a `chemistry`: analyses of a vessel that had settled, each with its `±`.",
-    example: "[{at: product, of: A, value: 0.12 mol/L ± 0.01 mol/L}]",
-    shape: list(analysis),
   },
   contents: {
     says: "With a `chemistry`, what the vessel held at the start, species by place: `{flask: {A: 1 mol/L}}`. Of a tracer: tracer in the vessel at the start, which is time zero (the first row, on a clock): concentrations by compartment, part or member (`chain.2`), evenly spread in each; `all` is what no other name covers. What is not named starts clean. Before the start nothing moves.",
