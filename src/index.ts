@@ -27,6 +27,7 @@ export { parseStudy } from "./parse/study.js";
 export { parseTrial } from "./parse/trial.js";
 export { printProblems } from "./problems/print.js";
 export type { Problem } from "./problems/problem.js";
+export { type FoundState, type StatesFound, steadyStates } from "./reaction/states.js";
 export { type SteadyState, steadyState } from "./reaction/steady.js";
 export { meanAges, meanLives } from "./simulate/ages.js";
 export { exact } from "./simulate/exact.js";

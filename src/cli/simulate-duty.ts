@@ -5,12 +5,15 @@ import { isClosed, type Network } from "../model/network.js";
 import { parseDuty } from "../parse/duty.js";
 import { collector } from "../problems/report.js";
 import { networkSettings } from "../reaction/conditions.js";
+import { temperatureUnit } from "../reaction/figures.js";
 import { predict } from "../reaction/prediction.js";
+import { type StatesFound, steadyStates } from "../reaction/states.js";
 import type { SteadyState } from "../reaction/steady.js";
 import { formatNumber } from "../units/format.js";
 import { inUnit } from "../units/unit.js";
 import type { Context } from "./context.js";
 import { columnsCsv } from "./csv.js";
+import { statesJson } from "./json/states.js";
 import { steadyJson } from "./json/steady.js";
 import { type Outcome, UsageError } from "./outcome.js";
 import { plantAt } from "./plant.js";
@@ -18,6 +21,7 @@ import { progressOn } from "./progress.js";
 import { settingsFrom } from "./settings.js";
 import type { SimulateOptions } from "./simulate-options.js";
 import { speciesUnits } from "./species.js";
+import { statesText } from "./text/states.js";
 import { steadyText } from "./text/steady.js";
 import { blocks } from "./text/table.js";
 
@@ -36,6 +40,7 @@ export function simulateDuty(network: Network, options: SimulateOptions, { input
       `simulate: ${together.toLocaleString("en")} nodes solved together, balances within ${formatNumber(missing, 1)}`,
     ),
   );
+  const states = duty.chemistry ? searched(plant, duty) : undefined;
   progress.done();
   const { state: steady } = prediction;
   const { output } = options;
@@ -43,11 +48,16 @@ export function simulateDuty(network: Network, options: SimulateOptions, { input
   const { worst } = steady;
   return {
     status: steady.converged ? 0 : 3,
-    text: blocks(steadyText(plant, duty, prediction), output === undefined ? "" : `  concentrations: ${output}`),
+    text: blocks(
+      steadyText(plant, duty, prediction),
+      statesText(plant, duty, states),
+      output === undefined ? "" : `  concentrations: ${output}`,
+    ),
     json: {
       ok: steady.converged,
       duty: duty.title,
       ...steadyJson(plant, duty, prediction),
+      ...(states ? statesJson(plant, duty, states) : {}),
       ...(output === undefined ? {} : { written: output }),
     },
     notes: steady.converged
@@ -58,10 +68,26 @@ export function simulateDuty(network: Network, options: SimulateOptions, { input
   };
 }
 
+/** Nodes up to which a plant is searched for several steady states. */
+const mostSearched = 400;
+
+function searched(plant: Plant, duty: Duty): StatesFound {
+  if (plant.columns.size > mostSearched) return { states: [], left: ["the network has too many nodes"] };
+  return steadyStates(plant, duty.chemistry, duty);
+}
+
 /** What leaves every node, cells of tables and members of chains included. */
-function concentrationsCsv({ network, columns }: Plant, duty: Duty, { species, concentrations }: SteadyState): string {
+function concentrationsCsv({ network, columns }: Plant, duty: Duty, state: SteadyState): string {
+  const { species, concentrations, temperatures } = state;
   const units = speciesUnits(network, duty, species);
   const n = species.length;
-  const header = ["leaving", ...species.map((s, i) => `${s} [${units[i].name || "1"}]`)];
-  return columnsCsv(header, columns.size, columns.nameOf, (node, i) => inUnit(concentrations[node * n + i], units[i]));
+  const warm = temperatureUnit(duty);
+  const header = [
+    "leaving",
+    ...species.map((s, i) => `${s} [${units[i].name || "1"}]`),
+    ...(temperatures ? [`temperature [${warm.name}]`] : []),
+  ];
+  return columnsCsv(header, columns.size, columns.nameOf, (node, i) =>
+    temperatures && i === n ? inUnit(temperatures[node], warm) : inUnit(concentrations[node * n + i], units[i]),
+  );
 }

@@ -20,6 +20,12 @@ interface Inlet {
 export interface GroupBalance extends BlockSystem {
   /** y without any reaction: a start, from one linear solve. Undefined where the flows admit none. */
   mixed(): Float64Array | undefined;
+  /** s, by node: volume over what enters. */
+  readonly spaceTime: Float64Array;
+  /** s: volume over what enters from outside. */
+  readonly meanTime: number;
+  /** True where there is nothing but cells and joints. */
+  readonly onlyCells: boolean;
 }
 
 /**
@@ -65,9 +71,17 @@ export function groupBalance(
     return d;
   };
 
+  let [held, entering] = [0, 0];
+  for (let k = 0; k < count; k++) {
+    held += tau[k] * inflow[k];
+    entering += inflow[k] * (1 - inlets[k].reduce((sum, { share }) => sum + share, 0));
+  }
   return {
     count,
     size: n,
+    spaceTime: tau,
+    meanTime: held / entering,
+    onlyCells: part.every((p) => p === Part.Cell || p === Part.Joint),
     memory: tau.map((t, k) => (part[k] === Part.Cell ? t : 0)),
     residual(y, f) {
       for (let k = 0; k < count; k++) {

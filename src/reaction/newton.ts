@@ -56,6 +56,12 @@ export function solveNewton(system: BlockSystem, y: Float64Array): NewtonResult 
   return newton(eliminating(system), y, byElimination);
 }
 
+/** The same from one of many starts: given up where it does not get on. */
+export const solveNewtonFrom = (system: BlockSystem, y: Float64Array): NewtonResult => {
+  const eliminated = eliminating(system);
+  return iterate(eliminated, workspace(eliminated), y, 40, byElimination);
+};
+
 /** The same for one that solves for its steps itself, to an accuracy that tightens as the residual falls. */
 export const solveInexactNewton = (system: System, y: Float64Array): NewtonResult => newton(system, y, byIteration);
 

@@ -6,13 +6,18 @@ import type { Circle } from "./circle-start.js";
 import type { Conditions } from "./conditions.js";
 import { type Conserved, conservedBy } from "./conserved.js";
 import type { Pass } from "./dispersion.js";
-import { groupBalance } from "./group.js";
-import { type NewtonResult, solveNewton } from "./newton.js";
+import { type GroupBalance, groupBalance } from "./group.js";
+import { type GroupState, groupStates, settleGroup } from "./group-search.js";
+import type { NewtonResult } from "./newton.js";
+import { rangeOf } from "./range.js";
 
 /** Up to here nodes that feed one another are solved by elimination, above it by iteration. */
 const mostEliminated = 200;
 /** Where iteration fails, elimination is tried up to here. */
 const mostTried = 2000;
+/** Unknowns of a group up to which it is followed in time, where heat may make it ignite; and searched for several states. */
+const mostFollowed = 200;
+const mostSearched = 300;
 
 /** How far the solution of many nodes that feed one another has come. */
 export interface SteadyProgress {
@@ -105,6 +110,14 @@ export class Walk {
   }
 
   private eliminate(nodes: Int32Array, outside: Float64Array): { y: Float64Array; result: NewtonResult } {
+    const balance = this.balanceOf(nodes, outside);
+    const y = balance.mixed() ?? outside.slice();
+    // With heat there may be several states: the one is wanted that a vessel filled with what is fed runs into.
+    const byTime = this.conditions.heat !== undefined && y.length <= mostFollowed;
+    return { y, result: settleGroup(balance, y, byTime) };
+  }
+
+  private balanceOf(nodes: Int32Array, outside: Float64Array): GroupBalance {
     const { plant, inflow, place } = this;
     const { start, edges } = this.into;
     const inlets = Array.from(nodes, (node) =>
@@ -114,9 +127,46 @@ export class Walk {
       }),
     );
     const inflows = Float64Array.from(nodes, (node) => inflow[node]);
-    const balance = groupBalance(plant, nodes, outside, inlets, inflows, this.conditions);
-    const y = balance.mixed() ?? outside.slice();
-    return { y, result: solveNewton(balance, y) };
+    return groupBalance(plant, nodes, outside, inlets, inflows, this.conditions);
+  }
+
+  /**
+   * All steady states of a group that a search finds, upstream being as it is; undefined where there is nothing to search: a
+   * body that does not feed itself, or too many nodes.
+   */
+  statesOf(group: Int32Array): GroupState[] | undefined {
+    const { n, place } = this;
+    const nodes = group.filter((node) => this.inflow[node] > 0);
+    const alone = nodes.length === 1 && !this.feedsItself(nodes[0]);
+    if (nodes.length === 0 || nodes.length * n > mostSearched) return undefined;
+    if (alone && this.plant.columns.part[nodes[0]] !== Part.Cell) return undefined;
+    for (let p = 0; p < nodes.length; p++) place[nodes[p]] = p;
+    const outside = new Float64Array(nodes.length * n);
+    for (let p = 0; p < nodes.length; p++) this.bring(nodes[p], outside, p * n);
+    const balance = this.balanceOf(nodes, outside);
+    const first = balance.mixed() ?? outside.slice();
+    const result = settleGroup(balance, first, true);
+    const states = groupStates(balance, rangeOf(this.conditions, nodes, balance, outside), first, result);
+    for (let p = 0; p < nodes.length; p++) place[nodes[p]] = -1;
+    return states;
+  }
+
+  /** Goes on from a state of a group. */
+  take(group: Int32Array, { y, residual }: Pick<GroupState, "y" | "residual">): void {
+    const { n } = this;
+    const nodes = group.filter((node) => this.inflow[node] > 0);
+    for (const node of group) if (!(this.inflow[node] > 0)) this.y.fill(Number.NaN, node * n, (node + 1) * n);
+    for (let p = 0; p < nodes.length; p++) this.y.set(y.subarray(p * n, p * n + n), nodes[p] * n);
+    this.residual = Math.max(this.residual, residual);
+  }
+
+  /** A walk that has come as far as this one and goes on by itself. */
+  fork(): Walk {
+    const other = new Walk(this.plant, this.conditions, this.progress);
+    other.y.set(this.y);
+    other.residual = this.residual;
+    other.worst = this.worst;
+    return other;
   }
 
   private iterate(nodes: Int32Array, outside: Float64Array): ReturnType<typeof solveCircle> {

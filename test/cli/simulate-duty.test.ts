@@ -69,3 +69,50 @@ test("options that say nothing about a duty are told", async () => {
   expect(status).toBe(2);
   expect(err).toContain("--until says nothing about the steady state of a duty");
 });
+
+const warm = {
+  "tank.yaml": network("kind: stirred, volume: 100 L").replace("10 L/min", "100 L/min"),
+  "chemistry.yaml": `chemistry: A goes, and warms
+format: 1
+species: {A: {}}
+constants: {k: {at: 350 K, value: 1 1/min, activation: 72.75 kJ/mol}}
+reactions: [{makes: {A: -1}, rate: k * A, heat: -50 kJ/mol}]
+medium: {heat-capacity: 0.239 kJ/L/K}
+`,
+  "duty.yaml": `duty: Jacketed
+format: 1
+chemistry: chemistry.yaml
+feeds: {feed: {A: 1 mol/L, temperature: 350 K}}
+heat: {body: {jacket: 300 K, conductance: 833.333 W/K}}
+report: [conversion of A, temperature at product]
+`,
+};
+
+test("heat: temperatures, where the heat goes, all steady states with their stability, and the caution", async () => {
+  const { status, out, written } = await backmix(["simulate", "tank.yaml", "--duty", "duty.yaml", "-o", "x.csv"], {
+    files: warm,
+  });
+  expect(status).toBe(0);
+  expect(out).toMatch(/leaving +A, mol\/L +temperature, K\n/);
+  expect(out).toMatch(
+    /heat +reactions set free 10\.23 kW, the jacket of body takes out 20\.4 kW, the streams carry in/,
+  );
+  expect(out).toContain("3 steady states found from many starts");
+  expect(out).toMatch(/1 \* +12\.28 % +324\.5 K +stable: fades e-fold in 1 min/);
+  expect(out).toMatch(/2 +50 % +350 K +unstable: grows e-fold in 0\.35 min/);
+  expect(out).toContain("do not use this for relief sizing or interlock");
+  expect(written.get("x.csv")?.split("\n")[0]).toBe("leaving,A [mol/L],temperature [K]");
+  const { document } = await json(["simulate", "tank.yaml", "--duty", "duty.yaml"], { files: warm });
+  const states = document.steadyStates as { stable: boolean; fromFeed: boolean; report: { value: number }[] }[];
+  expect(states.map((s) => [s.stable, s.fromFeed])).toEqual([
+    [true, true],
+    [false, false],
+    [false, false],
+  ]);
+  expect(states[1].report[1].value).toBeCloseTo(350, 2);
+  expect(document).toMatchObject({
+    outlets: { product: { temperature: { unit: "K" } } },
+    compartments: { body: { temperature: { unit: "K" } } },
+    heat: { released: { unit: "kW" }, walls: { body: { unit: "kW" } } },
+  });
+});

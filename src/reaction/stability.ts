@@ -1,0 +1,59 @@
+import { eigenvalues } from "../numerics/eigenvalues.js";
+import { factor, solve } from "../numerics/lu.js";
+import { blockMatrix } from "./block-matrix.js";
+import type { GroupBalance } from "./group.js";
+
+/** How a small disturbance of a steady state goes on: 1/s, the fastest of its modes; above zero it grows. */
+export interface Mode {
+  readonly growth: number;
+  /** rad/s of that mode; 0 where it does not swing. */
+  readonly swing: number;
+}
+
+const mostComponents = 400;
+
+/**
+ * The mode of a group of cells and joints that grows fastest, or fades slowest: eigenvalues of the balances in time, joints
+ * eliminated.
+ * @returns undefined where the group holds other bodies, is too large, or the eigenvalues could not be had
+ */
+export function slowestMode(balance: GroupBalance, y: Float64Array): Mode | undefined {
+  const { count, size: n, memory } = balance;
+  if (!balance.onlyCells || count * n > mostComponents) return undefined;
+  const m = blockMatrix(count, n);
+  if (!balance.jacobian(y, m)) return undefined;
+  const cells: number[] = [];
+  const joints: number[] = [];
+  for (let k = 0; k < count * n; k++) (memory[Math.floor(k / n)] > 0 ? cells : joints).push(k);
+  const at = (i: number, j: number): number =>
+    m.rows[Math.floor(i / n)].get(Math.floor(j / n))?.[(i % n) * n + (j % n)] ?? 0;
+  const size = cells.length;
+  const rates = new Float64Array(size * size);
+  cells.forEach((i, r) => {
+    cells.forEach((j, c) => {
+      rates[r * size + c] = at(i, j) / memory[Math.floor(i / n)];
+    });
+  });
+  if (joints.length > 0) {
+    const own = Float64Array.from({ length: joints.length ** 2 }, (_, e) =>
+      at(joints[Math.floor(e / joints.length)], joints[e % joints.length]),
+    );
+    const lu = factor(own, joints.length);
+    if (lu === "singular") return undefined;
+    cells.forEach((j, c) => {
+      const column = Float64Array.from(joints, (q) => at(q, j));
+      solve(lu, column);
+      cells.forEach((i, r) => {
+        let sum = 0;
+        joints.forEach((q, k) => {
+          sum += at(i, q) * column[k];
+        });
+        rates[r * size + c] -= sum / memory[Math.floor(i / n)];
+      });
+    });
+  }
+  const found = size > 0 ? eigenvalues(rates, size) : undefined;
+  if (!found) return undefined;
+  const k = found.real.reduce((best, x, i) => (x > found.real[best] ? i : best), 0);
+  return { growth: found.real[k], swing: Math.abs(found.imaginary[k]) };
+}
