@@ -36,44 +36,97 @@ export function multiply(a: SparseRows, x: Float64Array, y: Float64Array): void 
 }
 
 /**
- * The matrix with the given entries, columns ascending in every row; entries at one place are added. Time and memory linear in
- * entries.
+ * Collects entries row by row in two rounds, so that beside the matrix itself nothing is as long: first every row is told how many
+ * entries come (`expect`), then they are handed over in any order (`add`); entries at one place are added up.
  */
+export class RowBuilder {
+  private readonly start: Int32Array;
+  private next = new Int32Array(0);
+  private column = new Int32Array(0);
+  private value = new Float64Array(0);
+
+  constructor(private readonly size: number) {
+    this.start = new Int32Array(size + 1);
+  }
+
+  expect(row: number): void {
+    this.start[row + 1]++;
+  }
+
+  add(row: number, column: number, value: number): void {
+    if (this.next.length === 0) this.begin();
+    const at = this.next[row]++;
+    this.column[at] = column;
+    this.value[at] = value;
+  }
+
+  /** Columns ascending in every row. */
+  rows(): SparseRows {
+    if (this.next.length === 0) this.begin();
+    const { size, start, column, value } = this;
+    let n = 0;
+    for (let i = 0; i < size; i++) {
+      const [from, to] = [start[i], start[i + 1]];
+      sortRow(column, value, from, to);
+      start[i] = n;
+      for (let e = from; e < to; e++) {
+        if (n > start[i] && column[n - 1] === column[e]) value[n - 1] += value[e];
+        else {
+          column[n] = column[e];
+          value[n++] = value[e];
+        }
+      }
+    }
+    start[size] = n;
+    return { size, start, column: column.subarray(0, n), value: value.subarray(0, n) };
+  }
+
+  private begin(): void {
+    const { size, start } = this;
+    for (let i = 0; i < size; i++) start[i + 1] += start[i];
+    this.next = start.slice(0, size);
+    this.column = new Int32Array(start[size]);
+    this.value = new Float64Array(start[size]);
+  }
+}
+
+/** Rows shorter than this are sorted by insertion. */
+const shortRow = 32;
+
+/** Sorts a stretch by column; what has one column stays in its order. */
+function sortRow(column: Int32Array, value: Float64Array, from: number, to: number): void {
+  if (to - from > shortRow) {
+    const order = Int32Array.from({ length: to - from }, (_, k) => from + k).sort(
+      (a, b) => column[a] - column[b] || a - b,
+    );
+    const [columns, values] = [column.slice(from, to), value.slice(from, to)];
+    order.forEach((e, k) => {
+      column[from + k] = columns[e - from];
+      value[from + k] = values[e - from];
+    });
+    return;
+  }
+  for (let e = from + 1; e < to; e++) {
+    const [c, v] = [column[e], value[e]];
+    let at = e;
+    for (; at > from && column[at - 1] > c; at--) {
+      column[at] = column[at - 1];
+      value[at] = value[at - 1];
+    }
+    column[at] = c;
+    value[at] = v;
+  }
+}
+
+/** The matrix with the given entries, columns ascending in every row; entries at one place are added. */
 export function gatherRows(
   size: number,
   row: ArrayLike<number>,
   column: ArrayLike<number>,
   value: ArrayLike<number>,
 ): SparseRows {
-  // Entries by column first: handing them out in that order leaves every row's columns ascending.
-  const byColumn = new Int32Array(size + 1);
-  for (let e = 0; e < value.length; e++) byColumn[column[e] + 1]++;
-  for (let j = 0; j < size; j++) byColumn[j + 1] += byColumn[j];
-  const entries = new Int32Array(value.length);
-  for (let e = 0; e < value.length; e++) entries[byColumn[column[e]]++] = e;
-  const start = new Int32Array(size + 1);
-  for (let e = 0; e < value.length; e++) start[row[e] + 1]++;
-  for (let i = 0; i < size; i++) start[i + 1] += start[i];
-  const next = start.slice(0, size);
-  const columns = new Int32Array(value.length);
-  const values = new Float64Array(value.length);
-  for (const e of entries) {
-    const at = next[row[e]];
-    if (at > start[row[e]] && columns[at - 1] === column[e]) values[at - 1] += value[e];
-    else {
-      columns[at] = column[e];
-      values[at] = value[e];
-      next[row[e]]++;
-    }
-  }
-  const tight = new Int32Array(size + 1);
-  let n = 0;
-  for (let i = 0; i < size; i++) {
-    for (let e = start[i]; e < next[i]; e++) {
-      columns[n] = columns[e];
-      values[n++] = values[e];
-    }
-    tight[i + 1] = n;
-  }
-  return { size, start: tight, column: columns.subarray(0, n), value: values.subarray(0, n) };
+  const builder = new RowBuilder(size);
+  for (let e = 0; e < value.length; e++) builder.expect(row[e]);
+  for (let e = 0; e < value.length; e++) builder.add(row[e], column[e], value[e]);
+  return builder.rows();
 }

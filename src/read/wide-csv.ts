@@ -28,16 +28,20 @@ export interface WideCsv {
 /** The top of a table, in which its form is looked for, bytes. */
 const topSize = 65_536;
 
-/** Opens a table of which some columns are wanted. Reports and gives undefined where that cannot be. */
+/**
+ * Opens a table of which some columns are wanted. Reports and gives undefined where that cannot be.
+ * @param again reads the content once more when a message shows some of it, so that nobody need keep it so long
+ */
 export function openWideCsv(
   path: string,
   content: string | Uint8Array,
   asked: readonly ColumnName[],
   options: CsvOptions,
   report: Report,
+  again: () => string | Uint8Array | undefined,
 ): WideCsv | undefined {
-  const bytes = plainBytes(content);
-  const source = lazySource(path, bytes);
+  const { bytes, plain } = plainBytes(content);
+  const source = lazySource(path, again);
   const top = topOf(bytes);
   const table = readCsv({ path, text: textOf(bytes, 0, top) }, options, report);
   const data = table && dataRows(table, asked, options, report);
@@ -56,6 +60,7 @@ export function openWideCsv(
     each: (visit) => scan(bytes, start, separator, Int32Array.from(data.columns), visit),
     number: (from, to) => numberAt(bytes, from, to, point),
     span: (from, to) => {
+      if (plain) return { source, from, to: Math.max(from + 1, to) };
       const before = textOf(bytes, 0, from).length;
       return { source, from: before, to: before + Math.max(1, textOf(bytes, from, to).length) };
     },
@@ -75,22 +80,24 @@ function lastBefore(table: CsvTable, data: DataRows, asked: readonly ColumnName[
   return units || first < 2 ? before : table.rows[first - 2];
 }
 
-/** UTF-8 without a byte-order mark. A table in plain ASCII, as most are, is taken as it is. */
-function plainBytes(content: string | Uint8Array): Uint8Array {
-  if (typeof content === "string") return new TextEncoder().encode(decodeText(content));
-  for (let i = 0; i < content.length; i++) {
-    if (content[i] >= 128) return new TextEncoder().encode(decodeText(content));
-  }
-  return content;
+/** UTF-8 without a byte-order mark. A table in plain ASCII, as most are, is taken as it is: a letter a byte. */
+function plainBytes(content: string | Uint8Array): { bytes: Uint8Array; plain: boolean } {
+  if (typeof content !== "string" && isAscii(content)) return { bytes: content, plain: true };
+  return { bytes: new TextEncoder().encode(decodeText(content)), plain: false };
+}
+
+function isAscii(content: Uint8Array): boolean {
+  for (let i = 0; i < content.length; i++) if (content[i] >= 128) return false;
+  return true;
 }
 
 /** The text is made when a message shows it. */
-function lazySource(path: string, bytes: Uint8Array): Source {
+function lazySource(path: string, read: () => string | Uint8Array | undefined): Source {
   let text: string | undefined;
   return {
     path,
     get text() {
-      text ??= textOf(bytes, 0, bytes.length);
+      text ??= decodeText(read() ?? "");
       return text;
     },
   };

@@ -81,7 +81,7 @@ function openColumns(
   const content = openTable(path, { text: file, at: fileNode.at }, files, report);
   const columns = asked.filter((c) => c !== undefined);
   if (content === undefined || columns.length < asked.length) return undefined;
-  return openWideCsv(path, content, columns, csvOptions(child(spec, "csv")), report);
+  return openWideCsv(path, content, columns, csvOptions(child(spec, "csv")), report, () => files.read(path));
 }
 
 /**

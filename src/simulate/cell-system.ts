@@ -1,7 +1,7 @@
 import { Part, type Plant } from "../compile/plant.js";
 import { stronglyConnected } from "../numerics/graph.js";
 import { type MixedRows, settle } from "../numerics/mixed-rows.js";
-import { gatherRows } from "../numerics/sparse.js";
+import { RowBuilder } from "../numerics/sparse.js";
 import { type Entry, partsOf } from "./entry.js";
 
 /** A plant of cells and joints alone as one sparse system, for any number of cells: no object per cell. */
@@ -80,30 +80,21 @@ export function cellSystem(plant: Plant, entry: Entry, detectors: readonly Detec
     if (cell) volume[place[i]] = columns.volume[i];
     over[i] = cell ? columns.volume[i] : inflow[i];
   }
-  const links = flow.length;
-  const entries = links + cells + 2 * detectors.length;
-  const row = new Int32Array(entries);
-  const column = new Int32Array(entries);
-  const value = new Float64Array(entries);
-  for (let k = 0; k < links; k++) {
-    row[k] = place[to[k]];
-    column[k] = place[from[k]];
-    value[k] = over[to[k]] > 0 ? flow[k] / over[to[k]] : 0;
+  const builder = new RowBuilder(size + detectors.length);
+  for (let k = 0; k < flow.length; k++) builder.expect(place[to[k]]);
+  for (let i = 0; i < states; i++) builder.expect(i);
+  for (let d = cells; d < states; d++) builder.expect(d);
+  for (let k = 0; k < flow.length; k++) {
+    builder.add(place[to[k]], place[from[k]], over[to[k]] > 0 ? flow[k] / over[to[k]] : 0);
   }
   for (let i = 0; i < size; i++) {
-    if (part[i] !== Part.Cell) continue;
-    const at = links + place[i];
-    row[at] = place[i];
-    column[at] = place[i];
-    value[at] = -inflow[i] / columns.volume[i];
+    if (part[i] === Part.Cell) builder.add(place[i], place[i], -inflow[i] / columns.volume[i]);
   }
   detectors.forEach(({ node, lag }, d) => {
-    const at = links + cells + 2 * d;
-    row.fill(cells + d, at, at + 2);
-    column.set([place[node], cells + d], at);
-    value.set([1 / lag, -1 / lag], at);
+    builder.add(cells + d, place[node], 1 / lag);
+    builder.add(cells + d, cells + d, -1 / lag);
   });
-  const rows = { ...gatherRows(size + detectors.length, row, column, value), states };
+  const rows = { ...builder.rows(), states };
   const weight = volume.slice().fill(plant.volume.active / cells, cells);
   return { rows, place, volume, weight, cells, ...entered(rows, place, volume, plant, entry) };
 }

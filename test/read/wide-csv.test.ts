@@ -20,7 +20,7 @@ function cells(
   options: CsvOptions = {},
 ): string[][] | string[] {
   const { report, problems } = collector();
-  const table = openWideCsv("t.csv", content, asked(...columns), options, report);
+  const table = openWideCsv("t.csv", content, asked(...columns), options, report, () => content);
   if (!table) return problems.map((p) => p.code);
   const rows: string[][] = [];
   table.each((b) => rows.push(columns.map((_, i) => textOf(table.bytes, b[2 * i], b[2 * i + 1]))));
@@ -104,7 +104,8 @@ test("a column that is not there, an empty table, one without rows", () => {
 
 test("a cell's place is its line and column, also behind letters of several bytes", () => {
   const { report } = collector();
-  const table = openWideCsv("t.csv", "id,v\näöü,1\nß,oops\n", asked("id", "v"), {}, report);
+  const text = "id,v\näöü,1\nß,oops\n";
+  const table = openWideCsv("t.csv", text, asked("id", "v"), {}, report, () => text);
   const places: number[][] = [];
   table?.each((b) => {
     const { line, column, endColumn } = placeOf(table.span(b[2], b[3]));
