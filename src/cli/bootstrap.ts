@@ -61,7 +61,7 @@ export async function bootstrap(
       io.write(resume, `${JSON.stringify({ bootstrap: key, rows: [...rows].sort((a, b) => a[0] - b[0]) })}\n`);
   };
   const before = rows.size;
-  await runRefits(job, wanted, options.jobs, {
+  await runRefits(how, job, wanted, options.jobs, {
     cancelled: io.cancelled,
     rows(more) {
       for (const [r, values] of more) rows.set(r, values);

@@ -2,11 +2,14 @@ import { existsSync } from "node:fs";
 import { availableParallelism } from "node:os";
 import { fileURLToPath } from "node:url";
 import { Worker } from "node:worker_threads";
-import { type RefitJob, type RefitRows, type RefitSpan, refitsOfJob, rowsOf } from "./refit-job.js";
+import type { Refits } from "../fit/resample.js";
+import { type RefitJob, type RefitRows, type RefitSpan, rowsOf } from "./refit-job.js";
 
 /** Refits that are worth a thread of their own, and that are asked of one at a time. */
 const worthAThread = 30;
 const spanLength = 10;
+/** Young memory of a thread, MB: what a refit needs for a moment is then seldom moved about. */
+const maxYoungGenerationSizeMb = 64;
 
 /** What listens to a run of refits. */
 export interface RefitListener {
@@ -16,12 +19,14 @@ export interface RefitListener {
 }
 
 /**
- * Does refits by number on several threads, in this one where there are few or no file for a thread. What comes in does not
- * depend on how many there are.
+ * Does refits by number in this thread and, where there are many, in others beside it. What comes in does not depend on how many
+ * there are.
+ * @param own  the refits of the job, for this thread
  * @param threads  at most so many; undefined: as many as there are cores
  * @returns when all are done or it was cancelled
  */
 export async function runRefits(
+  own: Refits,
   job: RefitJob,
   wanted: readonly number[],
   threads: number | undefined,
@@ -30,14 +35,17 @@ export async function runRefits(
   const spans = spansOf(wanted);
   const most = Math.min(threads ?? availableParallelism(), Math.ceil(wanted.length / worthAThread));
   const file = workerFile();
-  if (most <= 1 || !file) return inThisThread(job, spans, listener);
-  await Promise.all(Array.from({ length: most }, () => oneThread(file, job, spans, listener)));
+  const others = file ? Math.max(0, most - 1) : 0;
+  await Promise.all([
+    ...Array.from({ length: others }, () => oneThread(file as string, job, spans, listener)),
+    inThisThread(own, spans, listener),
+  ]);
 }
 
 /** Takes spans from the front of the list until there are none. */
 function oneThread(file: string, job: RefitJob, spans: RefitSpan[], listener: RefitListener): Promise<void> {
   return new Promise((resolve, reject) => {
-    const worker = new Worker(file, { workerData: job });
+    const worker = new Worker(file, { workerData: job, resourceLimits: { maxYoungGenerationSizeMb } });
     const watch = setInterval(() => {
       if (listener.cancelled()) end();
     }, 50);
@@ -63,13 +71,13 @@ function oneThread(file: string, job: RefitJob, spans: RefitSpan[], listener: Re
   });
 }
 
-async function inThisThread(job: RefitJob, spans: RefitSpan[], listener: RefitListener): Promise<void> {
-  const refits = refitsOfJob(job);
-  for (const span of refits ? spans : []) {
+async function inThisThread(own: Refits, spans: RefitSpan[], listener: RefitListener): Promise<void> {
+  for (let span = spans.shift(); span; span = spans.shift()) {
     for (let r = span.from; r < span.to; r++) {
       if (listener.cancelled()) return;
-      listener.rows(rowsOf(refits as NonNullable<typeof refits>, { from: r, to: r + 1 }));
-      await new Promise(setImmediate); // an interrupt is heard between refits
+      listener.rows(rowsOf(own, { from: r, to: r + 1 }));
+      // Between refits interrupts and other threads are heard.
+      await new Promise(setImmediate);
     }
   }
 }

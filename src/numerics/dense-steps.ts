@@ -1,3 +1,5 @@
+import { exponentialOfTwo } from "./exponential-of-two.js";
+
 /** Rate times step of the series that a long step is doubled from. */
 const short = 1;
 /** Step lengths whose matrices are kept. */
@@ -21,10 +23,13 @@ export class DenseSteps {
   /** Numbers in a state. */
   length = 0;
   private rate = 0;
+  private a: Float64Array = new Float64Array(0);
   private jump = new Float64Array(0);
   private readonly kept: Step[] = [];
   private inUse = 0;
   private last: Step | undefined;
+  /** The last step, where no more are kept. */
+  private readonly spare: Step = { h: 0, matrix: new Float64Array(0) };
   /** Length of the last step that was a series. */
   private once = Number.NaN;
   private term = new Float64Array(0);
@@ -33,7 +38,8 @@ export class DenseSteps {
 
   /**
    * @param n  order of A
-   * @param a  A, then A_1, A_2, ...: n x n each, row-major; off-diagonal entries of A not negative, but for rounding
+   * @param a  A, then A_1, A_2, ...: n x n each, row-major; off-diagonal entries of A not negative, but for rounding; not to be
+   *           changed before the next `reset`
    */
   constructor(
     private readonly n: number,
@@ -62,6 +68,7 @@ export class DenseSteps {
     this.rate = rate;
     const { jump } = this;
     const by = rate > 0 ? rate : 1;
+    this.a = a;
     for (let k = 0; k < a.length; k++) jump[k] = a[k] / by;
     if (rate > 0) for (let i = 0; i < n; i++) jump[i * n + i] += 1;
   }
@@ -97,12 +104,16 @@ export class DenseSteps {
   private stepOf(h: number, slack: number): Step | undefined {
     const { kept } = this;
     for (let k = 0; k < this.inUse; k++) if (Math.abs(kept[k].h - h) <= slack) return kept[k];
-    if (!(Math.abs(this.once - h) <= slack) && this.rate * h <= longest) {
+    if (this.n !== 2 && !(Math.abs(this.once - h) <= slack) && this.rate * h <= longest) {
       this.once = h;
       return undefined;
     }
     const matrix = this.exponential(h);
-    if (this.inUse === mostKept) return { h, matrix: matrix.slice() };
+    if (this.inUse === mostKept) {
+      this.spare.h = h;
+      this.spare.matrix = matrix;
+      return this.spare;
+    }
     const place = this.inUse++;
     kept[place] ??= { h, matrix: new Float64Array(matrix.length) };
     kept[place].h = h;
@@ -160,6 +171,11 @@ export class DenseSteps {
   /** exp(A h) and its derivatives; good until the next. */
   private exponential(h: number): Float64Array {
     const { n, jump, rate } = this;
+    if (n === 2 && jump[1] * jump[2] >= 0) {
+      this.workspace[0] ??= new Float64Array(jump.length);
+      exponentialOfTwo(this.a, h, this.workspace[0]);
+      return this.workspace[0];
+    }
     const theta = rate * h;
     const doublings = theta > short ? Math.ceil(Math.log2(theta / short)) : 0;
     const small = rate > 0 ? theta / 2 ** doublings : h;
