@@ -44,6 +44,7 @@ export function groupStates(
   first: Float64Array,
   result: NewtonResult,
 ): GroupState[] {
+  const size = (y: Float64Array): number => sizeOf(y, balance.size, range.temperatures !== undefined);
   const found: { y: Float64Array; residual: number; reached: boolean }[] = [];
   const add = (y: Float64Array, { converged, residual }: NewtonResult, reached = false): void => {
     if (!converged || !y.every(Number.isFinite)) return;
@@ -55,13 +56,14 @@ export function groupStates(
     const y = start.slice();
     add(y, solveNewtonFrom(balance, y));
   }
-  return found.map((f) => ({ ...f, mode: slowestMode(balance, f.y) })).sort((a, b) => byHeat(a.y, b.y));
+  return found.map((f) => ({ ...f, mode: slowestMode(balance, f.y) })).sort((a, b) => size(a.y) - size(b.y));
 }
 
-/** From the least reacted: by what the last component sums to, which is the temperature where there is one. */
-function byHeat(a: Float64Array, b: Float64Array): number {
-  const sum = (y: Float64Array): number => y.reduce((s, x) => s + x, 0);
-  return sum(a) - sum(b);
+/** What states are put in order by: the temperature where there is one, else what is there in all. */
+function sizeOf(y: Float64Array, n: number, thermal: boolean): number {
+  let sum = 0;
+  for (let k = 0; k < y.length; k++) if (!thermal || k % n === n - 1) sum += y[k];
+  return sum;
 }
 
 /** Newton's method from the unreacted mixture, by way of time where it has far to go. */

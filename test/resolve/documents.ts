@@ -26,7 +26,14 @@ export function readChemistry(text: string): Read<Chemistry> {
 export function readDuty(text: string, chemistry?: Chemistry): Read<Duty> {
   const { report, problems } = collector();
   const tree = readYaml({ path: "duty.yaml", text }, report);
-  const found = tree && resolveDuty(tree, "duty.yaml", { chemistry: () => chemistry, tables: { read: () => undefined, root: undefined } }, report);
+  const found =
+    tree &&
+    resolveDuty(
+      tree,
+      "duty.yaml",
+      { chemistry: () => chemistry, tables: { read: () => undefined, root: undefined } },
+      report,
+    );
   return { found, problems, told: told(problems) };
 }
 
