@@ -28,6 +28,7 @@ export interface FitOptions {
   readonly strict?: true;
   readonly write?: true;
   readonly profile?: true;
+  readonly further?: true;
   readonly bootstrap?: number;
   readonly resample?: Resampling;
   readonly resume?: string;
@@ -75,17 +76,23 @@ export async function fitCommand(file: string, options: FitOptions, { inputs, io
   const fitStatus = cut ? 130 : statusOf(outcome.fit, options.strict === true);
   const writing = options.write ? writeFit(file, network, trials, outcome.fit, fitStatus, io) : undefined;
   const status = fitStatus === 0 && writing?.failed ? 1 : fitStatus;
+  const beyond =
+    sure && (options.further || cannotBeTold(outcome.fit))
+      ? (await import("./further.js")).beyondFit(network, trials, outcome.fit, options)
+      : undefined;
   return {
     status,
     text: blocks(
       fitText(network.title, outcome.fit, refits),
       pictureOf(outcome.fit, network.units.time, io),
+      beyond?.text,
       writing?.text,
     ),
     json: {
       ok: status === 0,
       network: network.title,
       ...fitJson(outcome.fit, network.units.time, refits),
+      ...beyond?.json,
       ...(writing ? { written: writing.written } : {}),
     },
     problems: [...outcome.problems, ...(writing?.problems ?? [])],

@@ -145,14 +145,19 @@ function addFit(root: Command, { perform, inputs, io }: Stage): void {
       "--profile",
       "profile every parameter: intervals that hold where the curve bends or a front crosses a sample",
     )
+    .option(
+      "--further",
+      "which further test would narrow the intervals most, and which networks of shared/parts show the same curve (by itself where a parameter cannot be told)",
+    )
     .option("--write", "put the values back into the network's file, comments kept");
   fit
     .option("--bootstrap <n>", "refit so many data sets made anew from the fit, on all cores", whole(1))
     .addOption(
-      new Option(
-        "--resample <how>",
-        "how they are made (default: residual, block where residuals hang together)",
-      ).choices(["residual", "block", "parametric"]),
+      new Option("--resample <how>", "how they are made (default: residual, hanging together as they did)").choices([
+        "residual",
+        "block",
+        "parametric",
+      ]),
     )
     .option("--resume <file>", "where the bootstrap saves what is done, and goes on from")
     .option("--jobs <n>", "threads of the bootstrap (default: all cores)", whole(1))

@@ -10,6 +10,7 @@ import { runStudy } from "../study/run.js";
 import type { Context } from "./context.js";
 import type { ExitStatus, Io } from "./io.js";
 import { studyJson } from "./json/study.js";
+import { partsLibrary } from "./library.js";
 import type { Outcome } from "./outcome.js";
 import { progressOn } from "./progress.js";
 import { studyText } from "./text/study.js";
@@ -34,6 +35,7 @@ export async function study(file: string, options: StudyOptions, { inputs, io }:
   const progress = progressOn(io);
   const result = runStudy(document, {
     cancelled: io.cancelled,
+    library: partsLibrary(),
     progress: ({ stage, what, done }) => progress.say(`study: ${Math.round(100 * done)} %, ${stage} ${what}`),
     ...(options.starts === undefined ? {} : { starts: options.starts }),
   });

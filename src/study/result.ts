@@ -4,6 +4,8 @@ import type { Fit } from "../fit/result.js";
 import type { Duty } from "../model/duty.js";
 import type { AimAsked, ChangeDocument, Rival, Study, SweepAsked } from "../model/study.js";
 import type { Trial } from "../model/trial.js";
+import type { FurtherTest } from "../plan/further.js";
+import type { SameCurve } from "../plan/same-curve.js";
 import type { Problem } from "../problems/problem.js";
 import type { SteadyState } from "../reaction/steady.js";
 import type { Unit } from "../units/unit.js";
@@ -27,6 +29,10 @@ export interface StudyResult {
   /** For every rival that survives, in the order of the ranking. */
   readonly sweeps: readonly Answered<SweepAsked, Sweep>[];
   readonly aims: readonly Answered<AimAsked, AimResult>[];
+  /** Networks of the library that show the curve of the best rival, though they are other vessels. */
+  readonly sameCurves: readonly SameCurve[];
+  /** Further tests of the best rival, the most telling first. */
+  readonly further: readonly FurtherTest[];
   /** Of the best rival. */
   readonly residence: Residence | undefined;
   /** Draws that intervals rest on. */

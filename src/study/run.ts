@@ -3,7 +3,10 @@ import { readMoments } from "../data/moments.js";
 import { type FitOptions, fit } from "../fit/fit.js";
 import { withKinetics } from "../fit/kinetics.js";
 import type { Duty } from "../model/duty.js";
+import type { Network } from "../model/network.js";
 import type { Asked, Rival, Study } from "../model/study.js";
+import { furtherTests } from "../plan/further.js";
+import { sameCurves } from "../plan/same-curve.js";
 import { type Answered, aimAsked, sweepAsked } from "./asked.js";
 import { changeOutcomes } from "./compare.js";
 import { drawsOf, type RivalDraws } from "./draws-of.js";
@@ -21,6 +24,8 @@ export interface StudyOptions {
   readonly draws?: number;
   readonly cancelled?: () => boolean;
   readonly progress?: (what: StudyProgress) => void;
+  /** Networks among which others of the same curve are looked for; default: none. */
+  readonly library?: readonly Network[];
   /** Of each fit; default as the fit chooses. */
   readonly starts?: number;
 }
@@ -93,6 +98,8 @@ export function runStudy(study: Study, options: StudyOptions = {}): StudyResult 
   const sweeps = asking("sweeping", study.sweeps, sweepAsked);
   const aims = asking("aiming", study.aims, aimAsked);
   const best = alive[0];
+  const sameCurvesOfBest = best?.plant && !cancelled() ? sameCurves(best.plant, options.library ?? []) : [];
+  const further = best?.fit && !cancelled() ? furtherTests(best.rival.network, study.trials, best.fit) : [];
   return {
     study,
     ranking,
@@ -101,6 +108,8 @@ export function runStudy(study: Study, options: StudyOptions = {}): StudyResult 
     changes,
     sweeps,
     aims,
+    sameCurves: sameCurvesOfBest,
+    further,
     residence: best?.plant && !cancelled() ? residenceOf(best.plant, draws.get(best.rival)?.settings ?? []) : undefined,
     draws: Math.min(count, ...[...draws.values()].map((d) => d.settings.length)),
     stopped: cancelled() ? "cancelled" : undefined,

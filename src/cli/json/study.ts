@@ -4,6 +4,7 @@ import type { Bounds, ChangedFigure, ChangeOutcome, Prediction, Ranked, StudyRes
 import type { Spread } from "../../study/spread-shares.js";
 import { inUnit, type Unit } from "../../units/unit.js";
 import { fitJson } from "./fit.js";
+import { furtherJson, sameCurveJson } from "./further.js";
 import { momentsResultJson } from "./moments.js";
 import { finite, pure, quantity } from "./quantity.js";
 import { aimJson, sweepJson } from "./sweep.js";
@@ -22,6 +23,8 @@ export function studyJson(result: StudyResult): Record<string, unknown> {
     changes: result.changes.flatMap(changeJson),
     sweeps: result.sweeps.map((a) => ({ ...askedJson(a), ...(a.found ? sweepJson(a.found) : { skipped: a.skipped }) })),
     aims: result.aims.map((a) => ({ ...askedJson(a), ...(a.found ? aimJson(a.found) : { skipped: a.skipped }) })),
+    sameCurve: result.sameCurves.map(sameCurveJson),
+    further: result.further.map(furtherJson),
     findings: [
       ...result.readings.flatMap(({ trial, moments }) => moments.findings.map((f) => ({ trial: trial.title, ...f }))),
       ...result.ranking.flatMap(({ rival, fit }) => (fit?.findings ?? []).map((f) => ({ network: rival.path, ...f }))),

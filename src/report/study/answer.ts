@@ -43,13 +43,18 @@ function sure(result: StudyResult): string {
     const names = equals.map((r) => `'${r.rival.network.title}' (${chance(r.standing.weight)})`).join(", ");
     return `This rests on ${name} (weight ${chance(best.standing.weight)}), but the data do not rule out ${names}.${caveat}`;
   }
-  if (others.length === 0)
-    return `This rests on ${name}, the only network tried: others may explain the data as well.${caveat}`;
+  if (others.length === 0) return `This rests on ${name}, the only network tried: ${untried(result)}${caveat}`;
   const next = others.find((r) => r.fit);
   const behind = next
     ? `; the next, '${next.rival.network.title}', is ${Math.round(next.standing.difference)} AICc units behind`
     : "";
-  return `Of ${result.ranking.length} networks tried, ${name} explains the tests far best${behind}. Networks that were not tried may do as well.${caveat}`;
+  return `Of ${result.ranking.length} networks tried, ${name} explains the tests far best${behind}. ${untried(result)}${caveat}`;
+}
+
+function untried({ sameCurves }: StudyResult): string {
+  if (sameCurves.length === 0) return "Networks that were not tried may do as well.";
+  const names = sameCurves.map((s) => `'${s.title}'`).join(", ");
+  return `No test at the outlet tells it from ${names}; other networks that were not tried may do as well.`;
 }
 
 function makes(result: StudyResult): string[] {

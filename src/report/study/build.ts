@@ -19,6 +19,7 @@ import { dataQuality, findingsOf } from "./data.js";
 import { driverName, methodWords, spreadWords } from "./driver-words.js";
 import { estimate, parameterEstimate, readingUnit } from "./estimate.js";
 import { curveFigures, rivalFigures, vesselFigure } from "./figures.js";
+import { furtherWords, sameCurveWords } from "./further-words.js";
 import { identifiabilityOf } from "./identifiability.js";
 import { residenceFigures } from "./residence-figures.js";
 import { testedFlows } from "./tested.js";
@@ -51,7 +52,7 @@ export function reportOf(
     equals: equalsOf(result),
     rivalCurves,
     parameters: best?.fit ? parametersOf(best) : [],
-    identifiability,
+    identifiability: { ...identifiability, says: [...identifiability.says, ...furtherWords(result.further)] },
     residence,
     predictions: result.predictions.filter((p) => p.rival === best?.rival).map(predictionRow),
     changes: changeRows(result),
@@ -100,9 +101,13 @@ function ratioWords(r: Ranked, lead: Ranked): string {
 
 function equalsOf(result: StudyResult): string[] {
   const [best, ...others] = result.ranking.filter((r) => r.survives);
-  return others.map(
+  const byTests = others.map(
     (r) => `'${best.rival.network.title}' and '${r.rival.network.title}' cannot be told apart by these tests`,
   );
+  const byAny = result.sameCurves.map(
+    (s) => `${sameCurveWords(s)}: no test at the outlet tells it from the best network`,
+  );
+  return [...byTests, ...byAny];
 }
 
 function parametersOf(best: Ranked): ReportParameter[] {
