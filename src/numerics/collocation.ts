@@ -44,6 +44,18 @@ export function evaluateAt(values: Float64Array, right: Float64Array, m: number,
   return result;
 }
 
+/** The function at x in [0, 1]; m components. */
+export function valueAt({ edges, values, end }: CollocationMesh, m: number, x: number): Float64Array {
+  const last = edges.length - 2;
+  let e = 0;
+  while (e < last && edges[e + 1] < x) e++;
+  const next = (e + 1) * stages * m;
+  // A stretch ends where the next begins: at that one's leftmost point.
+  const right = e < last ? values.subarray(next + (stages - 1) * m, next + stages * m) : end;
+  const place = (edges[e + 1] - x) / (edges[e + 1] - edges[e]);
+  return evaluateAt(values.subarray(e * stages * m, next), right, m, place);
+}
+
 /** A mesh filled from a function of the place. */
 export function meshOf(edges: Float64Array, m: number, y: (x: number) => ArrayLike<number>): CollocationMesh {
   const c = collocation().places;

@@ -37,7 +37,7 @@ export function dispersedPass(kinetics: Kinetics, peclet: number): Pass {
 }
 
 /** The state is c and then J, by species. */
-function fluxProblem(kinetics: Kinetics, peclet: number, fed: Float64Array): BoundaryProblem {
+export function fluxProblem(kinetics: Kinetics, peclet: number, fed: Float64Array): BoundaryProblem {
   const n = kinetics.size;
   const m = 2 * n;
   const left = new Float64Array(n * m);
