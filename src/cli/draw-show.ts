@@ -13,13 +13,13 @@ import type { Network } from "../model/network.js";
 import { parseDuty } from "../parse/duty.js";
 import { collector } from "../problems/report.js";
 import { networkSettings } from "../reaction/conditions.js";
+import { speciesUnits } from "../reaction/species-units.js";
 import { steadyState } from "../reaction/steady.js";
 import { nearest } from "../text/nearest.js";
 import type { Inputs } from "./inputs.js";
 import { UsageError } from "./outcome.js";
 import { plantAt } from "./plant.js";
 import { settingsFrom } from "./settings.js";
-import { speciesUnits } from "./species.js";
 
 export interface ShowOptions {
   readonly show?: string;

@@ -115,7 +115,11 @@ function addSimulate(root: Command, { perform, inputs, io }: Stage): void {
     )
     .option("--verify", "run a second engine and print the largest difference")
     .option("-o, --output <file>", "write the curves, or what leaves every cell at a duty, to F.csv")
-    .option("--ages <file>", "with --pulse and --step: write mean age and life expectancy at every cell to F.csv");
+    .option("--ages <file>", "with --pulse and --step: write mean age and life expectancy at every cell to F.csv")
+    .option(
+      "--along <file>",
+      "with --duty: concentrations along tubular and dispersed bodies to F.csv, F.svg or F.png",
+    );
   simulate.action((network: string, options) =>
     perform("simulate", async () => (await import("./simulate.js")).simulate(network, options, { inputs, io })),
   );

@@ -7,10 +7,12 @@ import { collector } from "../problems/report.js";
 import { networkSettings } from "../reaction/conditions.js";
 import { temperatureUnit } from "../reaction/figures.js";
 import { predict } from "../reaction/prediction.js";
+import { speciesUnits } from "../reaction/species-units.js";
 import { type StatesFound, steadyStates } from "../reaction/states.js";
 import type { SteadyState } from "../reaction/steady.js";
 import { formatNumber } from "../units/format.js";
 import { inUnit } from "../units/unit.js";
+import { writeAlong } from "./along.js";
 import type { Context } from "./context.js";
 import { columnsCsv } from "./csv.js";
 import { statesJson } from "./json/states.js";
@@ -20,13 +22,16 @@ import { plantAt } from "./plant.js";
 import { progressOn } from "./progress.js";
 import { settingsFrom } from "./settings.js";
 import type { SimulateOptions } from "./simulate-options.js";
-import { speciesUnits } from "./species.js";
 import { statesText } from "./text/states.js";
 import { steadyText } from "./text/steady.js";
 import { blocks } from "./text/table.js";
 
 /** `simulate --duty`: the steady state of one operating point. */
-export function simulateDuty(network: Network, options: SimulateOptions, { inputs, io }: Context): Outcome {
+export async function simulateDuty(
+  network: Network,
+  options: SimulateOptions,
+  { inputs, io }: Context,
+): Promise<Outcome> {
   const duty = inputs.document(options.duty ?? "", parseDuty);
   if (isClosed(network))
     throw new UsageError("a closed vessel has no steady state to look for: follow it with --transient");
@@ -45,6 +50,8 @@ export function simulateDuty(network: Network, options: SimulateOptions, { input
   const { state: steady } = prediction;
   const { output } = options;
   if (output !== undefined) io.write(output, concentrationsCsv(plant, duty, steady));
+  const { along } = options;
+  if (along !== undefined) await writeAlong(io, along, plant, duty, steady);
   const { worst } = steady;
   return {
     status: steady.converged ? 0 : 3,
@@ -52,6 +59,7 @@ export function simulateDuty(network: Network, options: SimulateOptions, { input
       steadyText(plant, duty, prediction),
       statesText(plant, duty, states),
       output === undefined ? "" : `  concentrations: ${output}`,
+      along === undefined ? "" : `  along the bodies: ${along}`,
     ),
     json: {
       ok: steady.converged,
@@ -59,6 +67,7 @@ export function simulateDuty(network: Network, options: SimulateOptions, { input
       ...steadyJson(plant, duty, prediction),
       ...(states ? statesJson(plant, duty, states) : {}),
       ...(output === undefined ? {} : { written: output }),
+      ...(along === undefined ? {} : { along }),
     },
     notes: steady.converged
       ? []

@@ -14,4 +14,5 @@ export interface SimulateOptions extends TimeOptions {
   readonly verify?: true;
   readonly output?: string;
   readonly ages?: string;
+  readonly along?: string;
 }

@@ -20,6 +20,9 @@ export async function simulate(file: string, options: SimulateOptions, context: 
       throw new UsageError(`--ages writes CSV: name a file that ends in .csv, not '${options.ages}'`);
     }
   }
+  if (options.along !== undefined && (asked[0] !== "duty" || options.transient)) {
+    throw new UsageError("--along goes with --duty FILE, without --transient: it is about what has settled");
+  }
   if (options.transient && asked[0] !== "duty") throw new UsageError("--transient goes with --duty FILE");
   if (asked[0] === "duty" && options.transient) {
     if (options.verify)

@@ -7,12 +7,9 @@ import {
   type SugiNode,
   sugiyama,
 } from "d3-dag";
-import { type Lane, untangle } from "./untangle.js";
+import { type Edge, type Lane, untangle } from "./untangle.js";
 
-export interface Edge {
-  readonly from: string;
-  readonly to: string;
-}
+export type { Edge };
 
 /** A place in a column: a block, or the lane in which a stream passes a column that it does not stop in. */
 export interface Seat {

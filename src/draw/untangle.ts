@@ -1,4 +1,7 @@
-import type { Edge } from "./order.js";
+export interface Edge {
+  readonly from: string;
+  readonly to: string;
+}
 
 /** A stream that passes blocks above or below them all: beside the blocks at its ends it goes up or down. */
 export interface Lane extends Edge {

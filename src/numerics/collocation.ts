@@ -49,11 +49,11 @@ export function valueAt({ edges, values, end }: CollocationMesh, m: number, x: n
   const last = edges.length - 2;
   let e = 0;
   while (e < last && edges[e + 1] < x) e++;
-  const next = (e + 1) * stages * m;
+  const next = (e + 1) * stageCount * m;
   // A stretch ends where the next begins: at that one's leftmost point.
-  const right = e < last ? values.subarray(next + (stages - 1) * m, next + stages * m) : end;
+  const right = e < last ? values.subarray(next + (stageCount - 1) * m, next + stageCount * m) : end;
   const place = (edges[e + 1] - x) / (edges[e + 1] - edges[e]);
-  return evaluateAt(values.subarray(e * stages * m, next), right, m, place);
+  return evaluateAt(values.subarray(e * stageCount * m, next), right, m, place);
 }
 
 /** A mesh filled from a function of the place. */

@@ -29,6 +29,8 @@ export interface StudyReport {
   /** Distributions of residence time and age of the vessel as fitted. */
   readonly residence: readonly Figure[];
   readonly predictions: readonly Prediction[];
+  /** What the liquid is like along the bodies that it flows through, by duty. */
+  readonly along: readonly Figure[];
   readonly changes: readonly Change[];
   /** Figures of duties over their inputs. */
   readonly sweeps: readonly Figure[];

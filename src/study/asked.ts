@@ -1,20 +1,14 @@
 import type { Settings } from "../compile/plant.js";
-import type { AimAsked, Asked, InputRange, Rival, Study, SweepAsked } from "../model/study.js";
+import type { AimAsked, Asked, InputRange, Study, SweepAsked } from "../model/study.js";
 import { type AimResult, solveAim } from "./aim.js";
 import { changedVessel } from "./changed.js";
 import type { RivalDraws } from "./draws-of.js";
 import { type Input, inputsOf } from "./inputs.js";
 import type { Operation, Row } from "./operate.js";
 import { operationOf } from "./operation.js";
-import type { Ranked } from "./result.js";
+import type { Answered, Ranked } from "./result.js";
 import { rowsFor } from "./sources.js";
 import { type Sweep, spaced, sweep, type Watch } from "./sweep.js";
-
-/** What a study asked of a rival, or why it could not be asked. */
-export type Answered<A extends Asked, R> = { readonly asked: A; readonly rival: Rival } & (
-  | { readonly found: R; readonly skipped?: undefined }
-  | { readonly found?: undefined; readonly skipped: string }
-);
 
 /** Draws behind the bands of a sweep and behind an aim: fewer than behind an interval, for they are taken at every point. */
 const sweepDraws = 40;

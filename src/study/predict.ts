@@ -31,6 +31,7 @@ export function predictDuty(ranked: Ranked, { operation, rows, values }: Sample)
       bounds: within,
       spread: spreads[k],
       steady: state,
+      plant,
     };
   });
 }

@@ -2,7 +2,7 @@ import type { Plant } from "../compile/plant.js";
 import type { MomentsResult } from "../data/moments.js";
 import type { Fit } from "../fit/result.js";
 import type { Duty } from "../model/duty.js";
-import type { AimAsked, ChangeDocument, Rival, Study, SweepAsked } from "../model/study.js";
+import type { AimAsked, Asked, ChangeDocument, Rival, Study, SweepAsked } from "../model/study.js";
 import type { Trial } from "../model/trial.js";
 import type { FurtherTest } from "../plan/further.js";
 import type { SameCurve } from "../plan/same-curve.js";
@@ -10,7 +10,6 @@ import type { Problem } from "../problems/problem.js";
 import type { SteadyState } from "../reaction/steady.js";
 import type { Unit } from "../units/unit.js";
 import type { AimResult } from "./aim.js";
-import type { Answered } from "./asked.js";
 import type { Standing } from "./rank.js";
 import type { Residence } from "./residence.js";
 import type { Spread } from "./spread-shares.js";
@@ -41,6 +40,12 @@ export interface StudyResult {
   readonly converged: boolean;
 }
 
+/** What a study asked of a rival, or why it could not be asked. */
+export type Answered<A extends Asked, R> = { readonly asked: A; readonly rival: Rival } & (
+  | { readonly found: R; readonly skipped?: undefined }
+  | { readonly found?: undefined; readonly skipped: string }
+);
+
 export interface Ranked {
   readonly rival: Rival;
   readonly fit: Fit | undefined;
@@ -65,6 +70,8 @@ export interface Prediction {
   /** What holds its variance; undefined where nothing is unsure. */
   readonly spread: Spread | undefined;
   readonly steady: SteadyState;
+  /** The vessel as it is operated there. */
+  readonly plant: Plant;
 }
 
 /** What the same curve would give with mixing as late or as early as it allows. */

@@ -120,3 +120,24 @@ test("heat: temperatures, where the heat goes, all steady states with their stab
     heat: { released: { unit: "kW" }, walls: { body: { unit: "kW" } } },
   });
 });
+
+test("--along writes the mixture along what it flows through, as numbers or as a picture", async () => {
+  const tube = { ...files, "tube.yaml": network("kind: tubular, volume: 10 L") };
+  const ask = (along: string, vessel = "tube.yaml") =>
+    backmix(["simulate", vessel, "--duty", "duty.yaml", "--along", along], { files: tube });
+  const { status, out, written } = await ask("along.csv");
+  expect(status).toBe(0);
+  expect(out).toContain("along the bodies: along.csv");
+  const [header, ...rows] = (written.get("along.csv") ?? "").trim().split("\n");
+  expect(header).toBe("body,share of its volume passed,A [mol/L]");
+  for (const [body, share, c] of rows.map((row) => row.split(","))) {
+    expect(body).toBe("body");
+    expect(Number(c)).toBeCloseTo(Math.exp(-Number(share)), 10);
+  }
+  expect((await ask("along.svg")).written.get("along.svg")).toContain("volume of body passed, L");
+  expect((await ask("along.csv", "chain.yaml")).err).toContain("no body of this network has a line along it");
+  expect((await ask("along.txt")).err).toContain("write to .csv, .svg or .png");
+  expect(
+    (await backmix(["simulate", "tube.yaml", "--pulse", "feed", "--along", "a.csv"], { files: tube })).status,
+  ).toBe(2);
+});

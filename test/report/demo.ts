@@ -217,6 +217,7 @@ export const demo: StudyReport = {
       skipped: "not tried for corner",
     },
   ],
+  along: [],
   sweeps: [
     {
       name: "sweep-1",

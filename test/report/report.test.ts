@@ -129,6 +129,7 @@ const nothing: StudyReport = {
   residence: [],
   predictions: [],
   changes: [],
+  along: [],
   sweeps: [],
   aims: [],
   assumptions: [],

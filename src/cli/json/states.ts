@@ -1,10 +1,10 @@
 import type { Plant } from "../../compile/plant.js";
 import type { Duty } from "../../model/duty.js";
 import { figuresOf, temperatureUnit } from "../../reaction/figures.js";
+import { speciesUnits } from "../../reaction/species-units.js";
 import type { StatesFound } from "../../reaction/states.js";
 import { dimensions } from "../../units/dimension.js";
 import type { Unit } from "../../units/unit.js";
-import { speciesUnits } from "../species.js";
 import { quantity } from "./quantity.js";
 import { reportedJson } from "./steady.js";
 

@@ -3,8 +3,8 @@ import type { Duty } from "../../model/duty.js";
 import { type Figure, temperatureUnit } from "../../reaction/figures.js";
 import type { HeatBalance } from "../../reaction/heat-balance.js";
 import type { Prediction } from "../../reaction/prediction.js";
+import { speciesUnits } from "../../reaction/species-units.js";
 import { kilowatt } from "../heat.js";
-import { speciesUnits } from "../species.js";
 import { finite, type QuantityJson, quantity, unitName } from "./quantity.js";
 
 /** The steady state of a duty, its figures and their bounds. */

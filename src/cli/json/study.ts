@@ -1,6 +1,13 @@
 import type { Asked } from "../../model/study.js";
-import type { Answered } from "../../study/asked.js";
-import type { Bounds, ChangedFigure, ChangeOutcome, Prediction, Ranked, StudyResult } from "../../study/result.js";
+import type {
+  Answered,
+  Bounds,
+  ChangedFigure,
+  ChangeOutcome,
+  Prediction,
+  Ranked,
+  StudyResult,
+} from "../../study/result.js";
 import type { Spread } from "../../study/spread-shares.js";
 import { inUnit, type Unit } from "../../units/unit.js";
 import { fitJson } from "./fit.js";

@@ -1,12 +1,12 @@
 import type { Plant } from "../../compile/plant.js";
 import type { Duty } from "../../model/duty.js";
 import { temperatureUnit } from "../../reaction/figures.js";
+import { speciesUnits } from "../../reaction/species-units.js";
 import type { TransientFigure } from "../../transient/figures.js";
 import { passageOf } from "../../transient/passage.js";
 import type { Course, Transient } from "../../transient/transient.js";
 import { dimensions, times } from "../../units/dimension.js";
 import type { Unit } from "../../units/unit.js";
-import { speciesUnits } from "../species.js";
 import type { Clock } from "../times.js";
 import { finite, quantity, type SeriesJson, series } from "./quantity.js";
 import { reportedJson } from "./steady.js";

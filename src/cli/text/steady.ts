@@ -3,10 +3,10 @@ import type { Duty } from "../../model/duty.js";
 import { type Figure, temperatureUnit } from "../../reaction/figures.js";
 import type { HeatBalance } from "../../reaction/heat-balance.js";
 import type { Prediction } from "../../reaction/prediction.js";
+import { speciesUnits } from "../../reaction/species-units.js";
 import { formatNumber, formatQuantity } from "../../units/format.js";
 import { inUnit } from "../../units/unit.js";
 import { kilowatt } from "../heat.js";
-import { speciesUnits } from "../species.js";
 import { blocks, pairs, table } from "./table.js";
 
 /** The steady state of a duty, for people. */

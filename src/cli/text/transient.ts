@@ -1,13 +1,13 @@
 import type { Plant } from "../../compile/plant.js";
 import type { Duty } from "../../model/duty.js";
 import { temperatureUnit } from "../../reaction/figures.js";
+import { speciesUnits } from "../../reaction/species-units.js";
 import type { TransientFigure } from "../../transient/figures.js";
 import { passageOf } from "../../transient/passage.js";
 import type { Transient } from "../../transient/transient.js";
 import { dimensions, times } from "../../units/dimension.js";
 import { formatNumber, formatQuantity } from "../../units/format.js";
 import { inUnit } from "../../units/unit.js";
-import { speciesUnits } from "../species.js";
 import type { Clock } from "../times.js";
 import { reportedText } from "./steady.js";
 import { blocks, pairs, table } from "./table.js";

@@ -7,7 +7,7 @@ import type { Prediction, StudyReport } from "../input.js";
 import { estimateRow, grouped } from "./rows.js";
 
 /** What the vessel makes under each duty: value, interval, where mixing would put it. */
-export function predictionsSection({ predictions }: StudyReport): Html {
+export function predictionsSection({ predictions, along }: StudyReport): Html {
   const driven = predictions.some((p) => (p.drivers?.length ?? 0) > 0);
   const rows = predictions.map((p) => {
     const { bounds, boundsSay } = p;
@@ -43,6 +43,7 @@ export function predictionsSection({ predictions }: StudyReport): Html {
     ...drawn,
     table("Predictions", columns, rows),
     ...spreads(predictions),
+    ...along.map(figure),
   ]);
 }
 

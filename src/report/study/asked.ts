@@ -1,6 +1,5 @@
 import type { Asked } from "../../model/study.js";
-import type { Answered } from "../../study/asked.js";
-import type { StudyResult } from "../../study/result.js";
+import type { Answered, StudyResult } from "../../study/result.js";
 import type { Figure, ReportAim } from "../input.js";
 import { aimWords } from "./aim-words.js";
 import { plotSweep } from "./sweep-figure.js";

@@ -12,6 +12,7 @@ import type {
   Rival,
   StudyReport,
 } from "../input.js";
+import { alongFigures } from "./along-figures.js";
 import { analysesOf } from "./analyses.js";
 import { answerOf } from "./answer.js";
 import { reportAims, sweepFigures, sweepsSkipped } from "./asked.js";
@@ -39,6 +40,7 @@ export function reportOf(
   const { findings, notSupported } = findingsOf(result);
   const tested = testedFlows(result.study);
   const sweeps = sweepFigures(result);
+  const along = best ? alongFigures(result.predictions.filter((p) => p.rival === best.rival)) : [];
   const report: StudyReport = {
     title: result.study.title,
     answer: answerOf(result),
@@ -55,6 +57,7 @@ export function reportOf(
     identifiability: { ...identifiability, says: [...identifiability.says, ...furtherWords(result.further)] },
     residence,
     predictions: result.predictions.filter((p) => p.rival === best?.rival).map(predictionRow),
+    along,
     changes: changeRows(result),
     sweeps,
     aims: reportAims(result),
@@ -69,6 +72,7 @@ export function reportOf(
     ...rivalCurves,
     ...identifiability.figures,
     ...residence,
+    ...along,
     ...sweeps,
   ];
   return { report, figures };
