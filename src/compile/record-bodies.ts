@@ -72,31 +72,35 @@ function recordBody(
   moving(flows.through[place], here.through, (to, v) => {
     to.through = v;
   });
-  const spelled = (factors: readonly number[]): Spelled => {
+  const spelled = (inputsAt: (k: number) => number): Spelled => {
     const at: Setting = { values: { ...here.values }, through: here.through };
-    for (const [k, input] of inputs.entries()) input.set(at, input.here * factors[k]);
+    for (const [k, input] of inputs.entries()) input.set(at, inputsAt(k));
     return spell(c, { ...given, values: at.values }, at.through, undefined);
   };
-  const as = inputs.map(() => 1);
-  const base = spelled(as);
-  if (base.blocks.length > 0) throw new NotRecorded();
-  const doubled = inputs.map((_, k) => spelled(as.map((f, j) => (j === k ? 2 : f))));
-  const uneven = spelled(inputs.map((_, k) => 1 + 1 / (k + 1.7)));
+  const actual = spelled((k) => inputs[k].here);
+  if (actual.blocks.length > 0) throw new NotRecorded();
+  // Tried at ones and twos, not where it happens to be: so it is the same wherever it is recorded.
+  const ones = spelled(() => 1);
+  const twos = inputs.map((_, k) => spelled((j) => (j === k ? 2 : 1)));
+  const uneven = spelled((k) => 1 + 1 / (k + 1.7));
+  for (const s of [ones, ...twos, uneven]) {
+    const same = s.volume.length === actual.volume.length && s.flow.length === actual.flow.length;
+    if (!same || s.part.some((p, i) => p !== actual.part[i])) throw new NotRecorded();
+  }
   const numbers = (of: "volume" | "flow"): Slot[] =>
-    base[of].map((x, i) => {
+    ones[of].map((x, i) => {
       let sum = tape.constant(0);
       let [left, expected] = [x, x];
-      for (const [k, { slot, here: at }] of inputs.entries()) {
-        const gain = doubled[k][of][i] - x;
+      for (const [k, { slot }] of inputs.entries()) {
+        const gain = twos[k][of][i] - x;
         if (Math.abs(gain) <= rounding * Math.abs(x)) continue;
         left -= gain;
         expected += gain / (k + 1.7);
-        sum = tape.add(sum, tape.multiply(tape.constant(gain / at), slot));
+        sum = tape.add(sum, tape.multiply(tape.constant(gain), slot));
       }
-      const same = doubled.every((d) => d[of].length === base[of].length) && uneven[of].length === base[of].length;
-      if (!same || !(Math.abs(uneven[of][i] - expected) <= rounding * Math.abs(expected))) throw new NotRecorded();
+      if (!(Math.abs(uneven[of][i] - expected) <= rounding * Math.abs(expected))) throw new NotRecorded();
       if (Math.abs(left) > rounding * Math.abs(x)) sum = tape.add(sum, tape.constant(left));
-      recorder.keepPositive(sum, x);
+      recorder.keepPositive(sum, actual[of][i]);
       return sum;
     });
   return { volume: numbers("volume"), flow: numbers("flow") };

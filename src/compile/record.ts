@@ -5,7 +5,7 @@ import type { FlowPlan } from "./flows.js";
 import type { Plant, Settings } from "./plant.js";
 import { recordBodies } from "./record-bodies.js";
 import { recordFlows } from "./record-flows.js";
-import { NotRecorded, Recorder } from "./recorder.js";
+import { NotRecorded, Recorder, recorded, type WhyNot } from "./recorder.js";
 
 /** A plant whose numbers are places on a tape: the same structure at other values, without compiling again. */
 export interface RecordedPlant {
@@ -20,10 +20,10 @@ export interface RecordedPlant {
 }
 
 /**
- * Records how a plant's numbers follow from the names that are set.
+ * Records how a plant's numbers follow from the names that are set. The recording is the same wherever it is made.
  * @param plant  compiled with `settings` and what the day sets
  * @param onDay  names that the day of a trial sets to values made of the network's names
- * @returns undefined where it cannot be: tables of zones, formulas with kinks, substances that divide by themselves
+ * @returns why not, where it cannot be: tables of zones, formulas with kinks, substances that divide by themselves
  */
 export function recordPlant(
   network: Network,
@@ -31,12 +31,11 @@ export function recordPlant(
   plant: Plant,
   settings: Settings,
   onDay: readonly (readonly [string, Value])[],
-): RecordedPlant | undefined {
-  if (isClosed(network) || followedIn(network).length > 0 || network.compartments.some((c) => c.zones))
-    return undefined;
+): RecordedPlant | WhyNot {
+  if (isClosed(network) || followedIn(network).length > 0 || network.compartments.some((c) => c.zones)) return "never";
   // Of several inlets of one body each would be an input of its own.
-  if (plan.streams.some((s) => s.enters !== undefined)) return undefined;
-  try {
+  if (plan.streams.some((s) => s.enters !== undefined)) return "never";
+  return recorded(() => {
     const recorder = new Recorder(network, Object.keys(settings), settings, onDay);
     for (const { left, right } of network.requires) {
       const order = recorder.at(left) > recorder.at(right) ? [left, right] : [right, left];
@@ -44,13 +43,10 @@ export function recordPlant(
       recorder.keepPositive(recorder.tape.subtract(larger, smaller), recorder.at(order[0]) - recorder.at(order[1]));
     }
     const flows = recordFlows(recorder, network, plan, plant.env);
-    const bodies = recordBodies(recorder, network, plant, flows);
-    const recorded = { recorder, plant, ...bodies };
-    return isFaithful(recorded, settings) ? recorded : undefined;
-  } catch (e) {
-    if (e instanceof NotRecorded) return undefined;
-    throw e;
-  }
+    const found = { recorder, plant, ...recordBodies(recorder, network, plant, flows) };
+    if (!isFaithful(found, settings)) throw new NotRecorded();
+    return found;
+  });
 }
 
 /** How far a recorded number may be from the compiled one, relative. */

@@ -5,8 +5,28 @@ import { type Slot, Tape } from "../numerics/tape.js";
 import { evaluateNames } from "./evaluate.js";
 import type { Settings } from "./plant.js";
 
-/** Thrown and caught within recording: this cannot be written down once and for all. */
-export class NotRecorded extends Error {}
+/**
+ * Why there is no recording: it cannot be written down once and for all, or only not at these values, where something that is
+ * elsewhere is not.
+ */
+export type WhyNot = "never" | "here";
+
+/** Thrown and caught within recording. */
+export class NotRecorded extends Error {
+  constructor(readonly why: WhyNot = "never") {
+    super(why);
+  }
+}
+
+/** What is recorded, or why it is not. */
+export function recorded<T>(record: () => T): T | WhyNot {
+  try {
+    return record();
+  } catch (e) {
+    if (e instanceof NotRecorded) return e.why;
+    throw e;
+  }
+}
 
 /** A tape with the names of a network on it. */
 export class Recorder {
@@ -71,7 +91,7 @@ export class Recorder {
   /** What is above zero where it was recorded, and must stay so. */
   keepPositive(slot: Slot, here: number): void {
     if (!this.moves(slot)) return;
-    if (!(here > 0)) throw new NotRecorded();
+    if (!(here > 0)) throw new NotRecorded("here");
     this.positive.add(slot);
   }
 

@@ -31,6 +31,8 @@ export interface Sloped {
 
 /** What a fit asks of the vessel. The fit knows nothing else of it. */
 export interface ForwardModel {
+  /** Names trials that will be asked for again and again. */
+  keep?(trials: readonly Trial[]): void;
   /**
    * Modelled concentration (SI) of every reading of a trial at the wanted times, without baseline.
    * @param values  names set otherwise than in the file, SI

@@ -85,10 +85,7 @@ export function networkModel(network: Network): ForwardModel {
   const ask = <T>(trial: Trial, values: Settings, of: (replay: Replay, inputs: Float64Array) => T | undefined) => {
     for (const replay of replays.of(trial)) {
       const inputs = inputsOf(replay.inputs, values);
-      const answer = inputs && of(replay, inputs);
-      if (!answer) continue;
-      replays.served(trial, replay);
-      return answer;
+      if (inputs) return of(replay, inputs);
     }
     return undefined;
   };
@@ -100,12 +97,16 @@ export function networkModel(network: Network): ForwardModel {
   const horizonOf = (wanted: WantedTimes): number =>
     wanted.reduce((m, { time }) => Math.max(m, time[time.length - 1] ?? 0), 0);
   return {
+    keep: (trials) => replays.keep(trials),
     respond(trial, values, wanted) {
       const quick = replayed(trial, values, wanted, []);
       if (quick) return quick.curves;
       const plant = plantFor(trial, values);
       if (!plant) return undefined;
-      replays.met(trial, values, setOnDay(trial), plant, horizonOf(wanted));
+      if (replays.record(trial, values, setOnDay(trial), plant, horizonOf(wanted))) {
+        const now = replayed(trial, values, wanted, []);
+        if (now) return now.curves;
+      }
       try {
         return hasSlopes(plant, trial)
           ? trialSlopes(plant, trial, wanted, []).curves
@@ -139,6 +140,10 @@ export function networkModel(network: Network): ForwardModel {
       const quick = ask(trial, values, (replay, inputs) => replay.delays(inputs));
       if (quick) return quick;
       const plant = plantFor(trial, values);
+      if (plant && replays.record(trial, values, setOnDay(trial), plant, 0)) {
+        const now = ask(trial, values, (replay, inputs) => replay.delays(inputs));
+        if (now) return now;
+      }
       const tubes = plant?.nodes.filter((n) => n.part === Part.Delay) ?? [];
       return tubes.map((n) => (n.inflow > 0 ? n.volume / n.inflow : Number.POSITIVE_INFINITY));
     },

@@ -38,6 +38,7 @@ export function prepare(
   const held = heldFacts(network, trials, names, env);
   const constants = uncertainConstants(network, trials, env);
   const cost = { evaluations: 0 };
+  model.keep?.(trials);
   return { network, env, trials, coordinates, held, constants, blocks, observations, model, cost };
 }
 

@@ -103,6 +103,9 @@ function flaskCurves(
 export function jointModel(tracer: ForwardModel, reacting: ForwardModel): ForwardModel {
   const of = (trial: Trial): ForwardModel => (trial.reacting ? reacting : tracer);
   return {
+    keep(trials) {
+      for (const trial of trials) of(trial).keep?.([trial]);
+    },
     respond: (trial, values, wanted) => of(trial).respond(trial, values, wanted),
     slopes: (trial, at, wanted, directions) => of(trial).slopes?.(trial, at, wanted, directions),
     delays: (trial, values) => of(trial).delays(trial, values),

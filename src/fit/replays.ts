@@ -10,65 +10,68 @@ import { Replay } from "../simulate/replay.js";
 import { engineFor } from "../simulate/trace.js";
 import { hasSlopes } from "../simulate/trial-slopes.js";
 
-/** Plants may change their structure as values do: so many recordings of one trial are kept. */
-const mostKept = 3;
+/** So many sets of names that are set are kept apart for one trial. */
+const mostKept = 8;
 
 /** What recordings there are of a trial. */
 interface Kept {
   readonly replays: Replay[];
-  /** Recordings that were tried in vain. */
-  failed: number;
+  /** Is it known that there can be none? */
+  never: boolean;
 }
 
 /**
- * Trials of a network as recordings: made when a trial comes a second time (a fit moves facts of trials, and drops such trials
- * again), dropped with it.
+ * Trials of a network as recordings, for those that come again and again. What a recording gives hangs on the names that are set
+ * and on nothing else, not on when and where it was made: a fit's last digits must not hang on what was asked before.
  */
 export class Replays {
-  private readonly kept = new WeakMap<Trial, Kept>();
+  private readonly kept = new Map<Trial, Kept>();
 
   constructor(
     private readonly network: Network,
     private readonly plan: FlowPlan,
   ) {}
 
-  /** Recordings of a trial for values of just these names, the last one that served first. */
+  /** Trials to record. */
+  keep(trials: readonly Trial[]): void {
+    for (const trial of trials) if (!this.kept.has(trial)) this.kept.set(trial, { replays: [], never: false });
+  }
+
+  /** Recordings of a trial, one for each set of names. */
   of(trial: Trial): readonly Replay[] {
     return this.kept.get(trial)?.replays ?? [];
   }
 
-  /** A recording held: it is asked first the next time. */
-  served(trial: Trial, replay: Replay): void {
-    const replays = this.kept.get(trial)?.replays;
-    if (!replays || replays[0] === replay) return;
-    replays.splice(replays.indexOf(replay), 1);
-    replays.unshift(replay);
-  }
-
   /**
-   * What was compiled for values that no recording held for.
+   * Records a trial where it was compiled for values that no recording held for.
    * @param onDay  what the trial sets
+   * @returns is there a new recording?
    */
-  met(
+  record(
     trial: Trial,
     values: Settings,
     onDay: readonly (readonly [string, Value])[],
     plant: Plant,
     horizon: number,
-  ): void {
+  ): boolean {
     const kept = this.kept.get(trial);
-    if (!kept) {
-      this.kept.set(trial, { replays: [], failed: 0 });
-      return;
+    const names = Object.keys(values);
+    if (!kept || kept.never || kept.replays.some((r) => sameNames(r.inputs, names))) return false;
+    if (!hasSlopes(plant, trial) || engineFor(plant, horizon) !== exact) {
+      kept.never = true;
+      return false;
     }
-    if (kept.failed >= mostKept || !hasSlopes(plant, trial) || engineFor(plant, horizon) !== exact) return;
-    const recorded = recordPlant(this.network, this.plan, plant, values, onDay);
-    const replayed = recorded && recordTrial(recorded, trial);
-    if (!replayed) {
-      kept.failed++;
-      return;
+    const plantOn = recordPlant(this.network, this.plan, plant, values, onDay);
+    const recorded = typeof plantOn === "string" ? plantOn : recordTrial(plantOn, trial);
+    if (typeof recorded === "string") {
+      kept.never = recorded === "never";
+      return false;
     }
-    kept.replays.unshift(new Replay(replayed, trial.tracer?.decay ?? 0));
-    if (kept.replays.length > mostKept) kept.replays.pop();
+    kept.replays.push(new Replay(recorded, trial.tracer?.decay ?? 0));
+    if (kept.replays.length > mostKept) kept.replays.shift();
+    return true;
   }
 }
+
+const sameNames = (a: readonly string[], b: readonly string[]): boolean =>
+  a.length === b.length && a.every((name) => b.includes(name));

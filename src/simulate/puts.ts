@@ -53,10 +53,24 @@ export function driveOf(plant: Plant, injection: Injection, decay = 0): { drive:
     const before = (form.from?.of(plant.env) ?? 0) * perFlow;
     return { drive: constantRate(form.level.of(plant.env) * perFlow - before, lasting || undefined), before };
   }
-  const { table, lag = 0 } = form;
-  const value =
-    decay === 0 ? table.value : table.value.map((c, i) => c * Math.exp(decay * (table.time[i] - injection.start)));
-  return { drive: signalDrive(table.time, value, flow, injection.start, lag), before: 0 };
+  return { drive: measuredDrive(injection, form, flow, decay), before: 0 };
+}
+
+/** The rate of an injection of one unit: of amount, of a level or rate, or of flow that brings a measured inlet. */
+export function unitDrive(injection: Injection, decay = 0): Drive {
+  const { form, lasting } = injection;
+  if (form.is === "pulse") return lasting > 0 ? constantRate(1 / lasting, lasting) : instant(1);
+  return form.is === "step" ? constantRate(1, lasting || undefined) : measuredDrive(injection, form, 1, decay);
+}
+
+function measuredDrive(
+  { start }: Injection,
+  { table, lag = 0 }: Extract<Injection["form"], { is: "signal" }>,
+  flow: number,
+  decay: number,
+): Drive {
+  const value = decay === 0 ? table.value : table.value.map((c, i) => c * Math.exp(decay * (table.time[i] - start)));
+  return signalDrive(table.time, value, flow, start, lag);
 }
 
 /**

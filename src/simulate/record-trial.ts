@@ -1,11 +1,11 @@
 import { Part } from "../compile/part.js";
 import type { RecordedPlant } from "../compile/record.js";
-import { NotRecorded, type Recorder } from "../compile/recorder.js";
+import { NotRecorded, type Recorder, recorded, type WhyNot } from "../compile/recorder.js";
 import type { Injection, Trial } from "../model/trial.js";
 import type { Slot } from "../numerics/tape.js";
 import { isLevel } from "../units/basis.js";
 import type { Drive } from "./linear-system.js";
-import { driveOf } from "./puts.js";
+import { unitDrive } from "./puts.js";
 import { RecordedUnrolling } from "./record-unroll.js";
 
 /** A trial on a recorded plant: for every injection one linear system without delays, and what its probes see of it. */
@@ -19,7 +19,7 @@ export interface RecordedTrial {
 export interface RecordedPut {
   /** s on the trial's clock. */
   readonly start: number;
-  /** In units of what `size` on the tape says. */
+  /** Of one unit of what is put in; how many there are is in `input` and what passes undispersed. */
   readonly drive: Drive;
   /** Number of states; rates between them, 1/s, and what enters them, row by row. */
   readonly states: number;
@@ -43,17 +43,15 @@ export interface RecordedPassage {
 const mostStates = 12;
 
 /**
- * @returns undefined where it cannot be recorded: vessels in balance with what came before, tubes in circles, many states
+ * Records a trial on a plant.
+ * @returns why not, where it cannot be: vessels in balance with what came before, tubes in circles, many states
  */
-export function recordTrial(plant: RecordedPlant, trial: Trial): RecordedTrial | undefined {
-  try {
+export function recordTrial(plant: RecordedPlant, trial: Trial): RecordedTrial | WhyNot {
+  return recorded(() => {
     const { recorder } = plant;
     const puts = trial.injections.map((i) => recordPut(plant, trial, i));
     return { recorder, puts, tubes: tubesOf(plant) };
-  } catch (e) {
-    if (e instanceof NotRecorded) return undefined;
-    throw e;
-  }
+  });
 }
 
 function tubesOf({ recorder, plant, volume, inflow }: RecordedPlant): Slot[] {
@@ -61,15 +59,13 @@ function tubesOf({ recorder, plant, volume, inflow }: RecordedPlant): Slot[] {
   return volume.flatMap((v, i) => (part[i] === Part.Delay ? [recorder.tape.divide(v, inflow[i])] : []));
 }
 
-function recordPut(recorded: RecordedPlant, trial: Trial, injection: Injection): RecordedPut {
-  const { recorder, plant } = recorded;
+function recordPut(on: RecordedPlant, trial: Trial, injection: Injection): RecordedPut {
+  const { recorder, plant } = on;
   const { tape } = recorder;
   const entry = plant.entry.get(injection.at);
   if (entry === undefined) throw new RangeError(`no place '${injection.at}' in the network`);
-  const size = sizeOf(recorded, injection, entry);
-  const { drive, before } = driveOf(plant, injection, trial.tracer?.decay ?? 0);
-  if (before !== 0) throw new NotRecorded();
-  const unrolled = new RecordedUnrolling(recorded, entry, size.slot);
+  const drive = unitDrive(injection, trial.tracer?.decay ?? 0);
+  const unrolled = new RecordedUnrolling(on, entry, sizeOf(on, injection, entry));
   const rows = [...unrolled.rows];
   const input = [...unrolled.input];
   const zero = tape.constant(0);
@@ -97,30 +93,15 @@ function recordPut(recorded: RecordedPlant, trial: Trial, injection: Injection):
   });
   if (rows.length > mostStates) throw new NotRecorded();
   const rates = rows.flatMap((row, i) => [...row].map(([column, slot]) => ({ row: i, column, slot })));
-  return { start: injection.start, drive: scaled(drive, 1 / size.here), states: rows.length, rates, input, passages };
+  return { start: injection.start, drive, states: rows.length, rates, input, passages };
 }
 
-/** What a drive is in proportion to. */
-function sizeOf(
-  { recorder, plant, inflow }: RecordedPlant,
-  { form }: Injection,
-  entry: number,
-): { slot: Slot; here: number } {
-  const { tape } = recorder;
-  const through = plant.columns.inflow[entry];
-  if (form.is === "signal") return { slot: inflow[entry], here: through };
-  const value = form.is === "pulse" ? form.amount : form.level;
-  const [slot, here] = [recorder.value(value), recorder.at(value)];
-  if (here === 0) throw new NotRecorded();
-  if (form.is === "step" && form.from && recorder.at(form.from) !== 0) throw new NotRecorded();
-  if (form.is === "step" && form.from && recorder.moves(recorder.value(form.from))) throw new NotRecorded();
-  const perFlow = form.is === "step" && isLevel(form.level.dimension);
-  return perFlow ? { slot: tape.multiply(slot, inflow[entry]), here: here * through } : { slot, here };
+/** What the tracer rate is in proportion to. */
+function sizeOf({ recorder, inflow }: RecordedPlant, { form }: Injection, entry: number): Slot {
+  if (form.is === "signal") return inflow[entry];
+  if (form.is === "pulse") return recorder.value(form.amount);
+  // A vessel in balance with what came before is left to others.
+  if (form.from && recorder.tape.known(recorder.value(form.from)) !== 0) throw new NotRecorded();
+  const level = recorder.value(form.level);
+  return isLevel(form.level.dimension) ? recorder.tape.multiply(level, inflow[entry]) : level;
 }
-
-const scaled = ({ amount, times, level, slope }: Drive, by: number): Drive => ({
-  amount: amount * by,
-  times,
-  level: level.map((x) => x * by),
-  slope: slope.map((x) => x * by),
-});
