@@ -8,9 +8,9 @@ import { sparseSolver } from "../numerics/sparse-lu.js";
  */
 export function plainCircle(
   size: number,
-  row: readonly number[],
-  column: readonly number[],
-  weight: readonly number[],
+  row: Int32Array,
+  column: Int32Array,
+  weight: Float64Array,
 ): BalanceSolver | undefined {
   const rows = Array.from({ length: size }, (_, i) => new Map([[i, 1]]));
   weight.forEach((w, k) => {

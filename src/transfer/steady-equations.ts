@@ -111,26 +111,12 @@ export class SteadyEquations {
 
   /** Of a group whose nodes are numbered by `place`; undefined for one node that does not feed itself. */
   private solverOf(group: Int32Array, g: number, place: Int32Array, inflow: Float64Array): BalanceSolver | undefined {
-    const { start, edges } = this.into;
-    const links: number[] = [];
-    for (const i of group) {
-      for (let e = start[i]; e < start[i + 1]; e++) {
-        const j = this.from[edges[e]];
-        if (this.groupOf[j] === g && (group.length > 1 || j === i)) links.push(edges[e]);
-      }
-    }
+    const links = this.linksWithin(group, g);
     const size = group.length;
     if (links.length === 0 || inflow[group[0]] === 0) return undefined;
     if (this.unlike) {
-      const [rows, columns] = [links.map((k) => place[this.to[k]]), links.map((k) => place[this.from[k]])];
-      return (
-        plainCircle(
-          size,
-          rows,
-          columns,
-          links.map((k) => this.weight[k]),
-        ) ?? unsolvable
-      );
+      const { from, to, part } = this.placed(links, place);
+      return plainCircle(size, to, from, part) ?? unsolvable;
     }
     const excess = Float64Array.from(group, (i) => this.fromOutside(i));
     if (size <= mostDense) {
@@ -145,12 +131,36 @@ export class SteadyEquations {
         },
       };
     }
-    const graph = {
-      size,
-      from: Int32Array.from(links, (k) => place[this.from[k]]),
-      to: Int32Array.from(links, (k) => place[this.to[k]]),
-    };
-    const part = Float64Array.from(links, (k) => this.weight[k]);
-    return balanceSolver(graph, part, excess) ?? unsolvable;
+    const { from, to, part } = this.placed(links, place);
+    return balanceSolver({ size, from, to }, part, excess) ?? unsolvable;
+  }
+
+  /** Links among the nodes of a group; of one node alone those to itself. */
+  private linksWithin(group: Int32Array, g: number): Int32Array {
+    const { start, edges } = this.into;
+    let count = 0;
+    for (let p = 0; p < group.length; p++) count += start[group[p] + 1] - start[group[p]];
+    const links = new Int32Array(count);
+    count = 0;
+    for (let p = 0; p < group.length; p++) {
+      const i = group[p];
+      for (let e = start[i]; e < start[i + 1]; e++) {
+        const j = this.from[edges[e]];
+        if (this.groupOf[j] === g && (group.length > 1 || j === i)) links[count++] = edges[e];
+      }
+    }
+    return links.subarray(0, count);
+  }
+
+  /** Their ends by place in the group, and what they bring. */
+  private placed(links: Int32Array, place: Int32Array): { from: Int32Array; to: Int32Array; part: Float64Array } {
+    const [from, to] = [new Int32Array(links.length), new Int32Array(links.length)];
+    const part = new Float64Array(links.length);
+    for (let k = 0; k < links.length; k++) {
+      from[k] = place[this.from[links[k]]];
+      to[k] = place[this.to[links[k]]];
+      part[k] = this.weight[links[k]];
+    }
+    return { from, to, part };
   }
 }
