@@ -7,7 +7,7 @@ import { root } from "./schemas.mjs";
 const folder = join(root, "reports", "bench"); // git-ignored
 await build({
   absWorkingDir: root,
-  entryPoints: { bench: "test/bench/bench.ts", own: "test/bench/own.ts" },
+  entryPoints: { bench: "test/bench/bench.ts", own: "test/bench/own.ts", coverage: "test/bench/coverage/run.ts" },
   outdir: folder,
   outExtension: { ".js": ".mjs" },
   bundle: true,

@@ -22,6 +22,8 @@ export interface StudyReport {
   readonly rivals: readonly Rival[];
   /** "bypass and corner fit equally well": what these data cannot tell apart. */
   readonly equals: readonly string[];
+  /** Whether the data ask for what a rival has more than its special case. */
+  readonly nested?: readonly string[];
   /** Rivals over the same points. */
   readonly rivalCurves: readonly Figure[];
   readonly parameters: readonly ReportParameter[];

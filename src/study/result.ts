@@ -10,6 +10,7 @@ import type { Problem } from "../problems/problem.js";
 import type { SteadyState } from "../reaction/steady.js";
 import type { Unit } from "../units/unit.js";
 import type { AimResult } from "./aim.js";
+import type { Nested } from "./nested.js";
 import type { Standing } from "./rank.js";
 import type { Residence } from "./residence.js";
 import type { Spread } from "./spread-shares.js";
@@ -28,6 +29,8 @@ export interface StudyResult {
   /** For every rival that survives, in the order of the ranking. */
   readonly sweeps: readonly Answered<SweepAsked, Sweep>[];
   readonly aims: readonly Answered<AimAsked, AimResult>[];
+  /** Rivals that are special cases of others, tested by F. */
+  readonly nested: readonly Nested[];
   /** Networks of the library that show the curve of the best rival, though they are other vessels. */
   readonly sameCurves: readonly SameCurve[];
   /** Further tests of the best rival, the most telling first. */

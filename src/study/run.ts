@@ -10,6 +10,7 @@ import { sameCurves } from "../plan/same-curve.js";
 import { aimAsked, sweepAsked } from "./asked.js";
 import { changeOutcomes } from "./compare.js";
 import { drawsOf, type RivalDraws } from "./draws-of.js";
+import { nestedTests } from "./nested.js";
 import { operationOf } from "./operation.js";
 import { predictDuty } from "./predict.js";
 import { standings, survives } from "./rank.js";
@@ -39,6 +40,7 @@ export interface StudyProgress {
 }
 
 const fewestDraws = 20;
+const mostNested = 6;
 
 /**
  * The whole job: fits every rival to all trials at once, ranks them, predicts every duty for those that survive, and
@@ -108,6 +110,7 @@ export function runStudy(study: Study, options: StudyOptions = {}): StudyResult 
     changes,
     sweeps,
     aims,
+    nested: cancelled() ? [] : nestedTests(fittedRivals(ranking), study.trials, study.seed),
     sameCurves: sameCurvesOfBest,
     further,
     residence: best?.plant && !cancelled() ? residenceOf(best.plant, draws.get(best.rival)?.settings ?? []) : undefined,
@@ -128,6 +131,13 @@ function withProfiles(
   if (!best?.fit?.converged || best.fit.parameters.length === 0 || cancelled()) return [...ranking];
   const { fit: again } = fitRival(study, best.rival, options, cancelled, true);
   return [again && !again.stopped ? { ...best, fit: again } : best, ...others];
+}
+
+/** Those that may be compared: few enough that every pair is looked at. */
+function fittedRivals(ranking: readonly Ranked[]) {
+  return ranking
+    .slice(0, mostNested)
+    .flatMap(({ rival: { network }, fit }) => (fit?.converged ? [{ title: network.title, network, fit }] : []));
 }
 
 function fitRival(study: Study, rival: Rival, options: StudyOptions, cancelled: () => boolean, profile = false) {

@@ -1,4 +1,5 @@
 import type { Bootstrap } from "../../fit/bootstrap.js";
+import { patternsOf } from "../../fit/patterns.js";
 import type { Estimate, Fit, FittedParameter, FittedProfile, Nuisance } from "../../fit/result.js";
 import { differenceInUnit, type Unit } from "../../units/unit.js";
 import { finite, quantity, series, unitName } from "./quantity.js";
@@ -35,6 +36,7 @@ export function fitJson(fit: Fit, time: Unit, refits?: Bootstrap): Record<string
       residual: { unit: unitName(r.unit), values: Array.from(r.residual, (v) => finite(differenceInUnit(v, r.unit))) },
     })),
     held: fit.held,
+    patterns: patternsOf(fit.readings),
     ...(refits ? { bootstrap: bootstrapJson(refits) } : {}),
     ...(fit.profiles ? { profiles: Object.fromEntries(fit.profiles.map((p) => [p.name, profileJson(p)])) } : {}),
     findings: fit.findings,

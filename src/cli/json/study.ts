@@ -30,6 +30,7 @@ export function studyJson(result: StudyResult): Record<string, unknown> {
     changes: result.changes.flatMap(changeJson),
     sweeps: result.sweeps.map((a) => ({ ...askedJson(a), ...(a.found ? sweepJson(a.found) : { skipped: a.skipped }) })),
     aims: result.aims.map((a) => ({ ...askedJson(a), ...(a.found ? aimJson(a.found) : { skipped: a.skipped }) })),
+    nested: result.nested.map(({ freedom, ...n }) => ({ ...n, f: finite(n.f), freedom: [...freedom] })),
     sameCurve: result.sameCurves.map(sameCurveJson),
     further: result.further.map(furtherJson),
     findings: [

@@ -3,7 +3,7 @@ import { figure, type Html, list, paragraph, section, table } from "../html.js";
 import type { StudyReport } from "../input.js";
 
 /** Which networks were tried, how they rank, and which cannot be told apart. */
-export function rivalsSection({ rivals, equals, rivalCurves }: StudyReport): Html {
+export function rivalsSection({ rivals, equals, nested, rivalCurves }: StudyReport): Html {
   const best = Math.min(...rivals.map((r) => r.aicc));
   const rows = rivals.map((r) => [
     r.network,
@@ -23,6 +23,7 @@ export function rivalsSection({ rivals, equals, rivalCurves }: StudyReport): Htm
   return section("rivals", "Rival networks", [
     table("Ranked by the small-sample Akaike criterion", columns, rows),
     ...told,
+    ...(nested && nested.length > 0 ? [paragraph("Special cases of others:"), list(nested)] : []),
     ...rivalCurves.map(figure),
   ]);
 }

@@ -22,6 +22,7 @@ import { estimate, parameterEstimate, readingUnit } from "./estimate.js";
 import { curveFigures, rivalFigures, vesselFigure } from "./figures.js";
 import { furtherWords, sameCurveWords } from "./further-words.js";
 import { identifiabilityOf } from "./identifiability.js";
+import { nestedWords } from "./nested-words.js";
 import { residenceFigures } from "./residence-figures.js";
 import { testedFlows } from "./tested.js";
 import { traitsOf } from "./traits.js";
@@ -52,6 +53,7 @@ export function reportOf(
     notSupported,
     rivals: result.ranking.map((r, i) => rivalRow(r, i, result)),
     equals: equalsOf(result),
+    nested: result.nested.map(nestedWords),
     rivalCurves,
     parameters: best?.fit ? parametersOf(best) : [],
     identifiability: { ...identifiability, says: [...identifiability.says, ...furtherWords(result.further)] },
