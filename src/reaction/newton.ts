@@ -101,7 +101,10 @@ function newton(system: System, y: Float64Array, enough: Enough): NewtonResult {
   if (first.converged) return first;
   settle(system, work, y, 400);
   const second = iterate(system, work, y, 60, enough);
-  return { ...second, iterations: first.iterations + second.iterations };
+  if (second.converged) return { ...second, iterations: first.iterations + second.iterations };
+  settle(system, work, y, 400, wrongWay);
+  const third = iterate(system, work, y, 60, enough);
+  return { ...third, iterations: first.iterations + second.iterations + third.iterations };
 }
 
 interface Workspace {
@@ -139,8 +142,14 @@ function iterate(system: System, w: Workspace, y: Float64Array, limit: number, e
   return { converged, residual: norm, worst: largestAt(w.f), iterations };
 }
 
-/** Implicit Euler steps in pseudo-time, lengthened as the residual falls (switched evolution relaxation). */
-function settle(system: System, w: Workspace, y: Float64Array, limit: number): void {
+/** Implicit Euler steps in pseudo-time, lengthened as the residual falls (switched evolution relaxation); shorter where one is refused. */
+function settle(
+  system: System,
+  w: Workspace,
+  y: Float64Array,
+  limit: number,
+  refused: (...of: [System, Workspace, Float64Array]) => boolean = () => false,
+): void {
   if (!system.residual(y, w.f)) return;
   let norm = size(w.f);
   let least = system.memory.reduce((m, x) => (x > 0 ? Math.min(m, x) : m), Number.POSITIVE_INFINITY) / 10;
@@ -149,7 +158,7 @@ function settle(system: System, w: Workspace, y: Float64Array, limit: number): v
   for (let k = 0; k < limit && norm > 1e-12; k++) {
     system.watch?.(norm);
     if (!system.step(y, w.f, 1 / pace, 1e-3, w.step)) return;
-    const next = take(system, w, y, 1);
+    const next = refused(system, w, y) ? undefined : take(system, w, y, 1);
     if (next === undefined) {
       pace /= 4;
       least = Math.min(least, pace);
@@ -160,6 +169,15 @@ function settle(system: System, w: Workspace, y: Float64Array, limit: number): v
     pace = Math.max(least, pace * Math.min(Math.max(norm / next, 0.2), 3));
     norm = next;
   }
+}
+
+/**
+ * Does a step empty what is growing? An implicit step longer than the time in which something multiplies (cells that grow on what
+ * feeds them) turns its growth into decay.
+ */
+function wrongWay(system: System, { f, step }: Workspace, y: Float64Array): boolean {
+  for (let i = 0; i < y.length; i++) if (f[i] > 0 && y[i] + step[i] < system.fall * y[i]) return true;
+  return false;
 }
 
 /** Halves the step until the residual falls; undefined where it never does. */
