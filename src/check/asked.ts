@@ -22,6 +22,11 @@ export function inputNames(
   for (const [feed, { species }] of duty.feeds) {
     for (const [name, { value }] of species) add(`${feed}.${name}`, value.dimension);
   }
+  for (const [feed, { temperature }] of duty.feeds) if (temperature) add(`${feed}.temperature`, temperature.dimension);
+  for (const [place, { temperature, conductance }] of duty.heat?.jackets ?? []) {
+    add(`${place}.jacket`, temperature.dimension);
+    add(`${place}.conductance`, conductance.dimension);
+  }
   if (duty.temperature) add("temperature", duty.temperature.dimension);
   for (const { name, role, value, between } of network.names) {
     if (role !== "inflow") add(name, value.dimension, between !== undefined);

@@ -50,6 +50,7 @@ export function checkDuty(network: Network, duty: Duty, report: Report, inTime =
   }
   for (const [name, { at }] of duty.contents?.levels ?? []) checkHolds(network, name, at, look, report);
   checkSettings(network, duty, look, report);
+  if (duty.regulated) look(duty.regulated.outlet, duty.regulated.outletAt, "outlet", outlets);
   for (const { at, place, what } of duty.report) {
     if (at !== undefined && what === "tracer-time") look(at, place, "outlet", outlets);
     else if (at !== undefined) look(at, place, "outlet, compartment or feed", [...outlets, ...left, ...feeds]);

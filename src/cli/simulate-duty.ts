@@ -7,14 +7,17 @@ import { collector } from "../problems/report.js";
 import { networkSettings } from "../reaction/conditions.js";
 import { temperatureUnit } from "../reaction/figures.js";
 import { predict } from "../reaction/prediction.js";
+import { regulatedFigures } from "../reaction/regulated.js";
 import { speciesUnits } from "../reaction/species-units.js";
 import { type StatesFound, steadyStates } from "../reaction/states.js";
 import type { SteadyState } from "../reaction/steady.js";
+import { dutyCautions } from "../report/duty-cautions.js";
 import { formatNumber } from "../units/format.js";
 import { inUnit } from "../units/unit.js";
 import { writeAlong } from "./along.js";
 import type { Context } from "./context.js";
 import { columnsCsv } from "./csv.js";
+import { regulatedJson } from "./json/regulated.js";
 import { statesJson } from "./json/states.js";
 import { steadyJson } from "./json/steady.js";
 import { type Outcome, UsageError } from "./outcome.js";
@@ -22,6 +25,7 @@ import { plantAt } from "./plant.js";
 import { progressOn } from "./progress.js";
 import { settingsFrom } from "./settings.js";
 import type { SimulateOptions } from "./simulate-options.js";
+import { cautionsText, regulatedText } from "./text/regulated.js";
 import { statesText } from "./text/states.js";
 import { steadyText } from "./text/steady.js";
 import { blocks } from "./text/table.js";
@@ -53,11 +57,14 @@ export async function simulateDuty(
   const { along } = options;
   if (along !== undefined) await writeAlong(io, along, plant, duty, steady);
   const { worst } = steady;
+  const regulated = duty.regulated && regulatedFigures(plant, duty.regulated);
   return {
     status: steady.converged ? 0 : 3,
     text: blocks(
       steadyText(plant, duty, prediction),
       statesText(plant, duty, states),
+      regulatedText(regulated, duty, plant),
+      cautionsText(duty),
       output === undefined ? "" : `  concentrations: ${output}`,
       along === undefined ? "" : `  along the bodies: ${along}`,
     ),
@@ -66,6 +73,8 @@ export async function simulateDuty(
       duty: duty.title,
       ...steadyJson(plant, duty, prediction),
       ...(states ? statesJson(plant, duty, states) : {}),
+      ...(regulated ? { regulated: regulatedJson(regulated, network.units) } : {}),
+      cautions: dutyCautions(duty).map((c) => c.says),
       ...(output === undefined ? {} : { written: output }),
       ...(along === undefined ? {} : { along }),
     },

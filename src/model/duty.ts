@@ -28,6 +28,7 @@ export interface Duty {
   /** Dimension of the concentration of each species of the chemistry. */
   readonly concentrations: readonly Dimension[];
   readonly report: readonly Reported[];
+  readonly regulated?: Regulated | undefined;
 }
 
 /** A value under a name of its own, and where that name stands. */
@@ -108,4 +109,23 @@ export interface Reported {
   /** time-beyond: the limit, and on which side of it time counts. */
   readonly limit?: { readonly side: "above" | "below"; readonly value: Value };
   readonly at: string | undefined;
+}
+
+/** What a regulator's contact-time method asks: figures that the duty declares, none is built in. SI. */
+export interface Regulated {
+  readonly at: Span;
+  /** The outlet. */
+  readonly outlet: string;
+  readonly outletAt: Span;
+  /** Disinfectant left at the outlet, as the operator measures it, kg/m3. */
+  readonly residual: Value | undefined;
+  /** Baffling factor that the regulator has assigned, in place of t10 of the network. */
+  readonly bafflingFactor: Value | undefined;
+  /** Contact time (kg s/m3) that the regulator's table asks for so many decades. */
+  readonly inactivation: readonly {
+    readonly name: string;
+    readonly at: Span;
+    readonly log: Value;
+    readonly ct: Value;
+  }[];
 }

@@ -7,13 +7,17 @@ export interface Caution {
 
 /** The cautions that apply, in plain words; what was tested always does. */
 export function cautionsFor(triggers: CautionTriggers): readonly Caution[] {
-  const chosen = rules.filter((rule) => triggers[rule.when]).map(({ about, says }) => ({ about, says }));
+  const chosen = cautionsOf(triggers);
   const beyond = (triggers.extrapolated ?? []).map((what) => ({
     about: "Beyond what was tested",
     says: `${what}. The network was not tested there: treat the number as an extrapolation, and test before relying on it.`,
   }));
   return [...beyond, ...chosen, always];
 }
+
+/** Those that are called for, and no more. */
+export const cautionsOf = (triggers: CautionTriggers): readonly Caution[] =>
+  rules.filter((rule) => triggers[rule.when]).map(({ about, says }) => ({ about, says }));
 
 const always: Caution = {
   about: "Tested conditions only",

@@ -33,6 +33,8 @@ export interface StudyReport {
   readonly predictions: readonly Prediction[];
   /** What the liquid is like along the bodies that it flows through, by duty. */
   readonly along: readonly Figure[];
+  /** Figures of a regulator's method, a table for each duty that declares one. */
+  readonly regulated: readonly { readonly about: string; readonly lines: readonly ReportRegulated[] }[];
   readonly changes: readonly Change[];
   /** Figures of duties over their inputs. */
   readonly sweeps: readonly Figure[];
@@ -159,6 +161,16 @@ export interface Change {
   readonly probabilityBetter: number;
   /** Rivals for which it could not be tried, and why. */
   readonly skipped?: string;
+}
+
+/** One regulated figure in words. */
+export interface ReportRegulated {
+  readonly name: string;
+  readonly value: string;
+  /** What it is made of. */
+  readonly from: string;
+  /** One-sided 95 % lower bound. */
+  readonly lower?: string;
 }
 
 /** What it takes to meet an aim. */

@@ -8,6 +8,7 @@ import { findingsSection } from "./sections/findings.js";
 import { assumptionsSection, cautionsSection, provenanceSection } from "./sections/grounds.js";
 import { identifiabilitySection, parametersSection } from "./sections/parameters.js";
 import { predictionsSection } from "./sections/predictions.js";
+import { regulatedSection } from "./sections/regulated.js";
 import { rivalsSection } from "./sections/rivals.js";
 
 /** The parts of a report in reading order, after the answer. One function each; empty where there is nothing to say. */
@@ -25,6 +26,7 @@ export const sections: readonly ((report: StudyReport) => Html)[] = [
   changesSection,
   aimsSection,
   sweepsSection,
+  regulatedSection,
   assumptionsSection,
   cautionsSection,
   provenanceSection,

@@ -44,7 +44,8 @@ export const speciesOf = (duty: Duty): string[] =>
     : [...new Set([...duty.feeds.values()].flatMap((f) => [...f.species.keys()]))];
 
 function dimensionOf({ what, of }: Reported, duty: Duty): Dimension {
-  if (what === "tracer-time") return dimensions.time;
+  if (what === "tracer-time" || what === "time-beyond") return dimensions.time;
+  if (what === "temperature") return dimensions.temperature;
   if (what !== "concentration") return dimensions.ratio;
   return duty.concentrations[speciesOf(duty).indexOf(of)] ?? dimensions["molar concentration"];
 }

@@ -11,6 +11,7 @@ import { resolveMixture } from "./course.js";
 import { feedTemperaturesUnused, heatFits, resolveHeat } from "./duty-heat.js";
 import { resolveLocal } from "./duty-local.js";
 import { massEquations, type SettledFeeds, settleFeeds, settleLimit } from "./feed-basis.js";
+import { resolveRegulated } from "./regulated.js";
 import { resolveReportLine } from "./report-line.js";
 import { aboveZero } from "./sign.js";
 import { emptyScope, resolveTemperature, resolveValue, type Wanted } from "./value.js";
@@ -52,6 +53,7 @@ export function resolveDuty(tree: MapNode, path: string, files: DutyFiles, repor
   const asked = itemsOf(child(tree, "report")).flatMap((item) =>
     item.type === "scalar" ? (resolveReportLine(item, species, tell) ?? []) : [],
   );
+  const regulated = resolveRegulated(child(tree, "regulated"), tell);
   const heatNode = child(tree, "heat");
   const heat = heatNode && resolveHeat(heatNode, tell);
   if (heatNode && temperatureNode) tell("temperature-and-heat", heatNode.at, {});
@@ -84,6 +86,7 @@ export function resolveDuty(tree: MapNode, path: string, files: DutyFiles, repor
     temperature,
     ...(heat ? { heat } : {}),
     report: lines,
+    ...(regulated ? { regulated } : {}),
   };
 }
 

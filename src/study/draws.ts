@@ -128,3 +128,7 @@ export function declaredDraws(inputs: readonly Declared[], count: number, seed: 
     Object.fromEntries(inputs.map(({ name, value, sd }, k) => [name, value + sd * normalQuantile(columns[k][i])])),
   );
 }
+
+/** A concentration or constant does not change its sign, however wide its `±`. */
+export const sameSide = (middle: number, drawn: number): number =>
+  middle < 0 ? Math.min(0, drawn) : Math.max(0, drawn);

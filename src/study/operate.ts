@@ -6,6 +6,7 @@ import type { Network } from "../model/network.js";
 import { constantsOf, type DutySettings, networkSettings } from "../reaction/conditions.js";
 import { type Figure, figuresOf } from "../reaction/figures.js";
 import { steadyState } from "../reaction/steady.js";
+import { sameSide } from "./draws.js";
 
 /** A duty in a network: what its reported figures are a function of. */
 export interface Operation {
@@ -47,12 +48,12 @@ export function plantOf(
   return broken ? { cannot: `\`requires: ${broken.text}\` does not hold` } : { plant };
 }
 
-/** What the duty reports, values of a row in place of all others. Concentrations and constants do not fall below zero. */
+/** What the duty reports, values of a row in place of all others. */
 export function operate(operation: Operation, row: Row = noRow): Operated {
   const made = plantOf(operation, row);
   if (made.plant === undefined) return { cannot: made.cannot };
   const { duty } = operation;
-  const settings = nonNegative({ ...row.duty, ...constantsOff(duty, row) });
+  const settings = { ...row.duty, ...constantsOff(duty, row) };
   const state = steadyState(made.plant, duty.chemistry, duty, settings);
   if (!state.converged) return { cannot: "the steady state did not converge" };
   return { figures: figuresOf(made.plant, duty, state, settings) };
@@ -90,11 +91,8 @@ function constantsOff(duty: Duty, row: Row): DutySettings {
     if (off === undefined || row.duty[name] !== undefined) continue;
     const env = new Float64Array(chemistry.temperatureSlot + 1);
     env.set(constantsOf(chemistry, duty, { ...row.duty, ...found }), n);
-    found[name] = value.of(env) + off * (value.sd?.(env) ?? 0);
+    const middle = value.of(env);
+    found[name] = sameSide(middle, middle + off * (value.sd?.(env) ?? 0));
   }
   return found;
 }
-
-/** However wide their `±`. */
-const nonNegative = (settings: DutySettings): DutySettings =>
-  Object.fromEntries(Object.entries(settings).map(([name, value]) => [name, Math.max(0, value)]));

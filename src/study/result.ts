@@ -7,6 +7,7 @@ import type { Trial } from "../model/trial.js";
 import type { FurtherTest } from "../plan/further.js";
 import type { SameCurve } from "../plan/same-curve.js";
 import type { Problem } from "../problems/problem.js";
+import type { RegulatedFigures } from "../reaction/regulated.js";
 import type { SteadyState } from "../reaction/steady.js";
 import type { Unit } from "../units/unit.js";
 import type { AimResult } from "./aim.js";
@@ -26,6 +27,8 @@ export interface StudyResult {
   /** Every duty for the best rival, and for the others that survive. */
   readonly predictions: readonly Prediction[];
   readonly changes: readonly ChangeOutcome[];
+  /** For every rival that survives and every duty that declares such figures. */
+  readonly regulated: readonly RegulatedOutcome[];
   /** For every rival that survives, in the order of the ranking. */
   readonly sweeps: readonly Answered<SweepAsked, Sweep>[];
   readonly aims: readonly Answered<AimAsked, AimResult>[];
@@ -109,4 +112,13 @@ export interface ChangedFigure {
   readonly difference95: readonly [number, number] | undefined;
   /** Share of the draws in which the figure is better; undefined where better has no direction. */
   readonly probabilityBetter: number | undefined;
+}
+
+/** What a duty declares of a contact-time method, worked out for a rival. */
+export interface RegulatedOutcome {
+  readonly rival: Rival;
+  readonly duty: Duty;
+  readonly figures: RegulatedFigures;
+  /** s: 95 % of the draws have at least this t10 (one-sided); undefined where too few gave one. */
+  readonly lower: number | undefined;
 }

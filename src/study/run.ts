@@ -14,6 +14,7 @@ import { nestedTests } from "./nested.js";
 import { operationOf } from "./operation.js";
 import { predictDuty } from "./predict.js";
 import { standings, survives } from "./rank.js";
+import { regulatedOutcome } from "./regulated.js";
 import { residenceOf } from "./residence.js";
 import type { Answered, Ranked, StudyResult } from "./result.js";
 import { type Sample, sampleOf } from "./sample.js";
@@ -99,6 +100,9 @@ export function runStudy(study: Study, options: StudyOptions = {}): StudyResult 
     );
   const sweeps = asking("sweeping", study.sweeps, sweepAsked);
   const aims = asking("aiming", study.aims, aimAsked);
+  const regulated = alive.flatMap((r) =>
+    [...(samples.get(r.rival)?.values() ?? [])].flatMap((sample) => (cancelled() ? [] : regulatedOutcome(r, sample))),
+  );
   const best = alive[0];
   const sameCurvesOfBest = best?.plant && !cancelled() ? sameCurves(best.plant, options.library ?? []) : [];
   const further = best?.fit && !cancelled() ? furtherTests(best.rival.network, study.trials, best.fit) : [];
@@ -108,6 +112,7 @@ export function runStudy(study: Study, options: StudyOptions = {}): StudyResult 
     readings,
     predictions,
     changes,
+    regulated,
     sweeps,
     aims,
     nested: cancelled() ? [] : nestedTests(fittedRivals(ranking), study.trials, study.seed),

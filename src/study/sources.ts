@@ -4,11 +4,11 @@ import type { Fit } from "../fit/result.js";
 import type { Duty } from "../model/duty.js";
 import type { Network } from "../model/network.js";
 import { dutyInputs, networkSettings } from "../reaction/conditions.js";
-import { type Declared, declaredDraws, declaredNames, fittedNames } from "./draws.js";
+import { type Declared, declaredDraws, declaredNames, fittedNames, sameSide } from "./draws.js";
 import type { Operation, Row } from "./operate.js";
 
 /** What is known about where an uncertain input comes from: how to learn more of it follows. */
-export type SourceKind = "fit" | "vessel" | "flow" | "kinetics" | "feed" | "temperature";
+export type SourceKind = "fit" | "vessel" | "flow" | "kinetics" | "feed" | "heat" | "temperature";
 
 /** Inputs that are unsure together, independently of all others: the fitted parameters as one, every declared `±` by itself. */
 export interface Source {
@@ -51,6 +51,7 @@ export function rowsFor(
       delete vessel[name];
     }
     const inDuty: Record<string, number> = { ...own[i] };
+    for (const { name, value } of inputs) inDuty[name] = sameSide(value, inDuty[name]);
     for (const [name, constant] of kinetics) if (name in drawn) inDuty[constant] = drawn[name];
     const offDuty: Record<string, number> = {};
     for (const name of follows) {
@@ -79,8 +80,13 @@ export function sourcesOf({ network, duty, kinetics }: Operation, fit: Fit | und
     duty: place === "duty" ? [name] : [],
   });
   const constants = new Set(duty.chemistry?.constants.map((c) => c.name) ?? []);
-  const kindOf = (name: string): SourceKind =>
-    name === "temperature" ? "temperature" : constants.has(name) ? "kinetics" : "feed";
+  const fed = new Set([...duty.feeds].flatMap(([feed, { species }]) => [...species.keys()].map((s) => `${feed}.${s}`)));
+  const local = new Set([...(duty.local ?? [])].flatMap(([at, l]) => [...l.constants.keys()].map((c) => `${at}.${c}`)));
+  const kindOf = (name: string): SourceKind => {
+    if (constants.has(name) || local.has(name)) return "kinetics";
+    if (fed.has(name)) return "feed";
+    return name === "temperature" || name.endsWith(".temperature") ? "temperature" : "heat";
+  };
   const sources = [
     ...(fitted.length + rates.length > 0
       ? [{ kind: "fit" as const, name: [...fitted, ...rates].join(", "), vessel: fitted, duty: rates }]

@@ -17,6 +17,7 @@ const words: Readonly<Record<DimensionName, readonly [says: string, example: str
   "mass rate": ["a mass rate (mass per time)", "3 g/min"],
   "molar rate": ["a molar rate (amount per time)", "0.2 mol/min"],
   "reaction rate": ["a reaction rate (concentration per time)", "0.1 mol/L/min"],
+  "contact time": ["a concentration times time", "131 mg·min/L"],
   frequency: ["a rate (per time)", "90 1/min"],
   pressure: ["a pressure", "2 bar"],
   energy: ["an energy", "40 kJ"],

@@ -18,6 +18,7 @@ export const dimensions = {
   "number concentration": [-3, 0, 0, 0, 0, 0, 0],
   "mass rate": [0, 1, -1, 0, 0, 0, 0],
   "molar rate": [0, 0, -1, 1, 0, 0, 0],
+  "contact time": [-3, 1, 1, 0, 0, 0, 0],
   "reaction rate": [-3, 0, -1, 1, 0, 0, 0],
   frequency: [0, 0, -1, 0, 0, 0, 0],
   pressure: [-1, 1, -2, 0, 0, 0, 0],

@@ -218,6 +218,12 @@ export const demo: StudyReport = {
     },
   ],
   along: [],
+  regulated: [
+    {
+      about: "Normal production",
+      lines: [{ name: "t10 at product", value: "12 min", from: "of the network at this flow", lower: "11 min" }],
+    },
+  ],
   sweeps: [
     {
       name: "sweep-1",

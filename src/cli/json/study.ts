@@ -14,6 +14,7 @@ import { fitJson } from "./fit.js";
 import { furtherJson, sameCurveJson } from "./further.js";
 import { momentsResultJson } from "./moments.js";
 import { finite, pure, quantity } from "./quantity.js";
+import { regulatedJson } from "./regulated.js";
 import { aimJson, sweepJson } from "./sweep.js";
 
 /** What a study found, without the path of its report. */
@@ -28,6 +29,12 @@ export function studyJson(result: StudyResult): Record<string, unknown> {
     readings: result.readings.map(({ trial, moments }) => ({ trial: trial.title, ...momentsResultJson(moments) })),
     predictions: result.predictions.map(predictionJson),
     changes: result.changes.flatMap(changeJson),
+    regulated: result.regulated.map(({ rival, duty, figures, lower }) => ({
+      network: rival.path,
+      duty: duty.title,
+      ...regulatedJson(figures, rival.network.units),
+      t10Lower95: lower === undefined ? null : quantity(lower, rival.network.units.time),
+    })),
     sweeps: result.sweeps.map((a) => ({ ...askedJson(a), ...(a.found ? sweepJson(a.found) : { skipped: a.skipped }) })),
     aims: result.aims.map((a) => ({ ...askedJson(a), ...(a.found ? aimJson(a.found) : { skipped: a.skipped }) })),
     nested: result.nested.map(({ freedom, ...n }) => ({ ...n, f: finite(n.f), freedom: [...freedom] })),

@@ -37,18 +37,24 @@ export function steadyText(plant: Plant, duty: Duty, prediction: Prediction): st
     : [];
   return blocks(
     `${plant.network.title}: ${duty.title}${steady.converged ? "" : " (not converged: best found)"}`,
-    table(
-      [
-        { title: "leaving" },
-        ...species.map((s, i) => ({ title: units[i].name ? `${s}, ${units[i].name}` : s, align: "right" as const })),
-        ...(warm ? [{ title: `temperature, ${warm.name}`, align: "right" as const }] : []),
-      ],
-      [
-        ...steady.feeds.map((f) => row(f.name, f.concentrations, f.temperature)),
-        ...bodies,
-        ...steady.outlets.map((o) => row(o.name, o.concentrations, o.temperature)),
-      ],
-    ),
+    // Where nothing is carried there is nothing to tell of places.
+    species.length === 0 && !warm
+      ? ""
+      : table(
+          [
+            { title: "leaving" },
+            ...species.map((s, i) => ({
+              title: units[i].name ? `${s}, ${units[i].name}` : s,
+              align: "right" as const,
+            })),
+            ...(warm ? [{ title: `temperature, ${warm.name}`, align: "right" as const }] : []),
+          ],
+          [
+            ...steady.feeds.map((f) => row(f.name, f.concentrations, f.temperature)),
+            ...bodies,
+            ...steady.outlets.map((o) => row(o.name, o.concentrations, o.temperature)),
+          ],
+        ),
     figuresText(prediction),
     pairs([
       ...at,

@@ -3,6 +3,7 @@ import type { Problem } from "../../problems/problem.js";
 import { chance, estimateLine } from "../../report/digits.js";
 import type { AnswerLine } from "../../report/input.js";
 import { reportAims } from "../../report/study/asked.js";
+import { regulatedCaution, regulatedLines } from "../../report/study/regulated-words.js";
 import type { StudyResult } from "../../study/result.js";
 import { formatNumber } from "../../units/format.js";
 import { inUnit, type Unit } from "../../units/unit.js";
@@ -22,6 +23,7 @@ export function studyText(result: StudyResult, answer: readonly AnswerLine[], re
     predictionsTable(result),
     changesTable(result),
     aimsText(result),
+    regulatedText(result),
     report === undefined ? "" : `report: ${report}`,
   );
 }
@@ -97,6 +99,28 @@ function aimsText(result: StudyResult): string {
   return reportAims(result)
     .map(({ question, says }) => [wrap("  ", question), ...says.map((s) => wrap("    ", s))].join("\n"))
     .join("\n");
+}
+
+/** Regulated figures in blocks of their own. */
+function regulatedText(result: StudyResult): string {
+  if (result.regulated.length === 0) return "";
+  const blocksOf = result.regulated.map(({ rival, duty, figures, lower }) =>
+    [
+      `  regulated figures, ${duty.title}, '${rival.network.title}'`,
+      table(
+        [{ title: "" }, right("value"), right("at least, with 95 %"), { title: "from" }],
+        duty.regulated
+          ? regulatedLines(figures, duty.regulated, rival.network.units, lower).map((l) => [
+              l.name,
+              l.value,
+              l.lower ?? "",
+              l.from,
+            ])
+          : [],
+      ),
+    ].join("\n"),
+  );
+  return blocks(...blocksOf, wrap("  ", regulatedCaution));
 }
 
 /** A row, and the rival that says so. */

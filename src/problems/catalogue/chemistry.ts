@@ -164,4 +164,9 @@ export const chemistryEntries = {
       `heat is balanced and nothing is fed, but the duty does not say how warm '${place}' is at the start`,
     fix: ({ place }) => `add its temperature, such as \`${place}: {temperature: 25 degC}\``,
   }),
+  "baffling-factor": entry<Record<never, never>>({
+    severity: "error",
+    says: () => "a baffling factor is t10 over volume over flow, at most 1",
+    fix: "write a number above 0 and up to 1, or leave it out: t10 is then that of the network",
+  }),
 } as const;

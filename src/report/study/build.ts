@@ -2,6 +2,7 @@ import type { Ranked, StudyResult } from "../../study/result.js";
 import type { Spread } from "../../study/spread-shares.js";
 import { dimensions } from "../../units/dimension.js";
 import { inUnit } from "../../units/unit.js";
+import { dutyTriggers } from "../duty-cautions.js";
 import type {
   CautionTriggers,
   Change,
@@ -23,6 +24,7 @@ import { curveFigures, rivalFigures, vesselFigure } from "./figures.js";
 import { furtherWords, sameCurveWords } from "./further-words.js";
 import { identifiabilityOf } from "./identifiability.js";
 import { nestedWords } from "./nested-words.js";
+import { regulatedLines } from "./regulated-words.js";
 import { residenceFigures } from "./residence-figures.js";
 import { testedFlows } from "./tested.js";
 import { traitsOf } from "./traits.js";
@@ -60,6 +62,10 @@ export function reportOf(
     residence,
     predictions: result.predictions.filter((p) => p.rival === best?.rival).map(predictionRow),
     along,
+    regulated: result.regulated.map(({ rival, duty, figures, lower }) => ({
+      about: `${duty.title}${severalSurvive(result) ? ` (by '${rival.network.title}')` : ""}`,
+      lines: duty.regulated ? regulatedLines(figures, duty.regulated, rival.network.units, lower) : [],
+    })),
     changes: changeRows(result),
     sweeps,
     aims: reportAims(result),
@@ -148,10 +154,11 @@ function spreadRow(spread: Spread | undefined): Pick<Prediction, "drivers" | "sp
   };
 }
 
+const severalSurvive = (result: StudyResult): boolean => result.ranking.filter((r) => r.survives).length > 1;
+
 function changeRows(result: StudyResult): Change[] {
   return result.changes.flatMap((c) => {
-    const several = result.ranking.filter((r) => r.survives).length > 1;
-    const on = several ? ` (by '${c.rival.network.title}')` : "";
+    const on = severalSurvive(result) ? ` (by '${c.rival.network.title}')` : "";
     return c.figures.map((f): Change => {
       const unit = readingUnit(f.duty, f.name, f.unit);
       return {
@@ -184,15 +191,15 @@ function cautionsOf(result: StudyResult, extrapolated: readonly string[]): Cauti
   const best = result.ranking[0];
   const traits = best?.plant && best.fit ? traitsOf(best.plant, best.fit) : [];
   const reacting = result.study.duties.some((d) => (d.chemistry?.reactions.length ?? 0) > 0);
-  const kill = result.study.duties.some((d) => d.report.some((r) => r.what === "log-removal"));
+  const own = dutyTriggers(result.study.duties);
   const radio = result.study.trials.some((t) =>
     t.injections.some(
       (i) => i.form.is === "pulse" && i.form.amount.dimension.every((x, k) => x === dimensions.frequency[k]),
     ),
   );
   return {
-    disinfection: kill,
-    drinkingWater: kill,
+    ...own,
+    ...(own.disinfection ? { drinkingWater: true } : {}),
     toxic: reacting && traits.some((t) => t.is === "bypass" || t.is === "dead"),
     radiotracer: radio,
     extrapolated,

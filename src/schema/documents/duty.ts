@@ -1,6 +1,6 @@
 import type { Shape } from "../shape.js";
 import { cleaning } from "./cleaning.js";
-import { choice, column, csv, either, heading, list, named, quantity, record, text } from "./common.js";
+import { choice, column, csv, either, heading, list, name, named, quantity, record, text } from "./common.js";
 
 const varied: Shape = { is: "later", sort: "map", says: "a flow that changes in time" };
 
@@ -115,6 +115,39 @@ export const dutyShape = record({
         "dotted",
       ),
     ),
+  },
+  regulated: {
+    says: "Figures of a regulator's contact-time method, told in a block of their own and never as a prediction: theoretical detention time (volume over flow), t10, baffling factor, CT and the credit that your own table gives for it. backmix has no such table: what is not declared here is not told.",
+    example: "{at: product, residual: 0.8 mg/L, inactivation: {giardia: {log: 3, ct: 131 mg·min/L}}}",
+    shape: record({
+      at: { shape: name, says: "The outlet that counts.", required: true, example: "product" },
+      residual: {
+        shape: quantity("mass concentration"),
+        says: "The disinfectant left there, as the operator measures it at this flow.",
+        example: "0.8 mg/L",
+      },
+      "baffling-factor": {
+        shape: quantity("ratio"),
+        says: "The baffling factor that the regulator has assigned; t10 is then this times volume over flow. Without it t10 is that of the network.",
+        example: "0.3",
+      },
+      inactivation: {
+        says: "By organism, what the regulator's table asks at the temperature, pH and residual of this duty: so many decades for so much concentration times time. Credit is taken in proportion, as tables of log-linear inactivation are made.",
+        example: "{giardia: {log: 3, ct: 131 mg·min/L}}",
+        needs: "residual",
+        shape: named(
+          record({
+            log: { shape: quantity("ratio"), says: "Decades that the entry is for.", required: true, example: "3" },
+            ct: {
+              shape: quantity("contact time"),
+              says: "Concentration times time; `131 mg/L * 1 min` where there is no `·` on the keyboard.",
+              required: true,
+              example: "131 mg·min/L",
+            },
+          }),
+        ),
+      },
+    }),
   },
   contents: {
     says: "What places hold where a transient starts: concentrations by species, by compartment (its pockets included), member, part, or `all` for every other place; a species that is not named is not there, nor is anything in places under no name. Without `contents` a transient starts in the steady state before the first change of a feed, or, where no feed changes, with clean liquid. With `heat`, `temperature` is that of the place; where it is not given, that of all feeds mixed. A closed vessel (a flask) must have it.",
