@@ -3,13 +3,15 @@ import { parseNetwork } from "../parse/network.js";
 import { parseTrial } from "../parse/trial.js";
 import { planTest } from "../plan/plan.js";
 import { sheetHtml, sheetMarkdown } from "../plan/sheet.js";
+import { tellApart } from "../plan/tell-apart.js";
 import { collector } from "../problems/report.js";
 import { trialOn } from "../resolve/trial-on.js";
 import type { Context } from "./context.js";
 import { requireParameters } from "./free.js";
-import { planJson } from "./json/plan.js";
+import { apartJson, planJson } from "./json/plan.js";
 import { InputError, type Outcome, UsageError } from "./outcome.js";
 import { requireTracer } from "./require-tracer.js";
+import { apartText } from "./text/apart.js";
 import { planText } from "./text/plan.js";
 import { blocks } from "./text/table.js";
 import { oneTime } from "./times.js";
@@ -21,6 +23,7 @@ export interface PlanCommandOptions {
   readonly samples: number;
   readonly every?: string;
   readonly output?: string;
+  readonly against?: string;
 }
 
 /** Most samples of a planned reading. */
@@ -49,6 +52,8 @@ export function plan(file: string, options: PlanCommandOptions, { inputs, io }: 
     free: options.free,
   });
   if (!found) throw new InputError(why);
+  const rival = options.against === undefined ? undefined : inputs.document(options.against, parseNetwork);
+  const apart = rival && tellApart(network, rival, trial, found);
   const time = until?.unit ?? network.units.time;
   if (sheet !== undefined) {
     const titles = { network: network.title, trial: trial.title };
@@ -58,6 +63,7 @@ export function plan(file: string, options: PlanCommandOptions, { inputs, io }: 
     status: 0,
     text: blocks(
       planText(network.title, trial.title, found, time),
+      rival && apart ? apartText(rival.title, apart, time) : "",
       sheet === undefined ? "" : `  field sheet: ${sheet}`,
     ),
     json: {
@@ -65,6 +71,7 @@ export function plan(file: string, options: PlanCommandOptions, { inputs, io }: 
       network: network.title,
       trial: trial.title,
       ...planJson(found, time),
+      ...(rival && apart ? { against: { network: rival.title, tests: apart.map((a) => apartJson(a, time)) } } : {}),
       ...(sheet === undefined ? {} : { written: sheet }),
     },
     problems: why,

@@ -178,10 +178,15 @@ function addPlan(root: Command, { perform, inputs, io }: Stage): void {
     [
       "plan networks/demo/both.yaml --trial networks/demo/draft.yaml",
       'plan networks/demo/both.yaml --trial networks/demo/draft.yaml --until "3 h" -o sheet.md',
+      "plan networks/demo/both.yaml --trial networks/demo/draft.yaml --against networks/demo/bypass.yaml",
     ],
   )
     .requiredOption("--trial <file>", "the draft: a trial whose readings have no file, with their `noise:`")
     .option("--free <names>", "parameters that the test is for, by commas (default: all)", collectNames)
+    .option(
+      "--against <rival>",
+      "another network: which test, the draft or a variation of it, would tell the two apart",
+    )
     .option("--until <time>", 'when to stop, such as "6 h" (default: when 98 % of the mean has been seen)')
     .option("--samples <n>", "samples after the injection, at each reading", whole(5), 40)
     .option("--every <time>", 'even samples of a logger, such as "10 s"')

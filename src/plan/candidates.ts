@@ -16,6 +16,9 @@ export interface Candidate {
   readonly like: number;
 }
 
+/** What is known of the vessel: its values and the readings that there are. */
+type Fitted = Pick<Fit, "values" | "readings">;
+
 /** Probes are thought of in so many compartments, the largest ones. */
 const mostProbes = 12;
 
@@ -23,7 +26,7 @@ const mostProbes = 12;
  * Further tests of one vessel, all after the last trial that has readings: as it was, longer, at half and twice the flow, at half
  * and twice what a day set otherwise or what turns (1/min), and with one more probe in each compartment that the flow reaches.
  */
-export function candidatesFor(network: Network, trials: readonly Trial[], fit: Fit): Candidate[] {
+export function candidatesFor(network: Network, trials: readonly Trial[], fit: Fitted): Candidate[] {
   const last = trials.findLastIndex((t) => !t.reacting && t.readings.some((r) => r.series && r.series.time.length > 0));
   if (last < 0) return [];
   const model = trials[last];
@@ -103,7 +106,7 @@ function settings(network: Network, trials: readonly Trial[], base: Omit<Candida
 }
 
 /** The same test with one more probe, in a compartment that is not read yet. */
-function probes(network: Network, fit: Fit, base: Omit<Candidate, "sort" | "says">): Candidate[] {
+function probes(network: Network, fit: Fitted, base: Omit<Candidate, "sort" | "says">): Candidate[] {
   const read = new Set(base.trial.readings.flatMap((r) => r.places.map((p) => p.name)));
   const [first] = base.trial.readings;
   const { plant } = compile(network, fit.values);

@@ -1,5 +1,6 @@
 import type { ExpectedParameter } from "../../plan/expected.js";
 import type { Plan, PlannedReading } from "../../plan/result.js";
+import type { TellsApart } from "../../plan/tell-apart.js";
 import { inUnit, type Unit } from "../../units/unit.js";
 import { finite, pure, quantity, series } from "./quantity.js";
 
@@ -59,3 +60,12 @@ const parametersJson = (parameters: readonly ExpectedParameter[]): object =>
       },
     ]),
   );
+
+/** How well one test would tell the network from a rival. */
+export const apartJson = ({ says, sort, difference, chance, at, time }: TellsApart, unit: Unit): object => ({
+  test: says,
+  sort,
+  difference,
+  chance,
+  most: { at, time: quantity(time, unit) },
+});
