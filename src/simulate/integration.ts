@@ -66,6 +66,7 @@ export class Integration implements Surroundings {
         (least, i) => Math.min(least, course.shortest(i, net.lag[i])),
         Number.POSITIVE_INFINITY,
       );
+      const step = Math.min(unit * longestStep, 0.98 * loop);
       const numbers = new Set(stage.held.map((h) => h.node));
       const start = new Float64Array(Math.max(1, stage.size));
       if (put.before) for (const h of stage.held) start.fill(put.before[h.node], h.offset, h.offset + h.size);
@@ -73,8 +74,8 @@ export class Integration implements Surroundings {
         unit,
         scale,
         until: horizon + (stages - s) * unit * longestStep * 1.02,
-        loop,
-        longest: this.pace(s, stage, Math.min(unit * longestStep, 0.98 * loop), unit),
+        step,
+        longest: this.pace(s, stage, step, unit),
         breaks: this.arrivals.breaks[s],
         kicks: this.arrivals.kicks.filter((k) => numbers.has(k.node)),
         wanted,

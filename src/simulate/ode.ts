@@ -39,15 +39,18 @@ export function integrate(plant: Plant, course: FlowCourse, horizon: number, put
   );
   const net = integrable(plant, realized);
   requireFewSteps(net, course, horizon);
-  let last: { drive: Drive; looks: Set<number>; run: Integration } | undefined;
+  let last: { drive: Drive; looks: Set<number>; run: Integration; by: number } | undefined;
   const outlets = plant.outlets.map((o) => o.node);
-  const runOf = (drive: Drive, looks: readonly number[]): Integration => {
+  /** All that it tells of amounts and concentrations is to be taken `by` times. */
+  const runOf = (drive: Drive, looks: readonly number[]): { run: Integration; by: number } => {
     const known = last?.drive === drive ? last : undefined;
-    if (known && looks.every((i) => known.looks.has(i))) return known.run;
+    if (known && looks.every((i) => known.looks.has(i))) return known;
     const all = new Set([...(known?.looks ?? outlets), ...looks]);
-    const run = new Integration(net, course, putOf(drive), horizon, [...all]);
-    last = { drive, looks: all, run };
-    return run;
+    const put = putOf(drive);
+    const by = measureOf(put);
+    const run = new Integration(net, course, over(put, by), horizon, [...all]);
+    last = { drive, looks: all, run, by };
+    return last;
   };
   let unit: ReturnType<typeof arrivals> | undefined;
   return {
@@ -61,17 +64,21 @@ export function integrate(plant: Plant, course: FlowCourse, horizon: number, put
       return [...direct].map(([delay, share]) => ({ delay, direct: share })).sort((a, b) => a.delay - b.delay);
     },
     see(drive, looks) {
-      const run = runOf(
+      const { run, by } = runOf(
         drive,
         looks.map((l) => l.node),
       );
       const seen = looks.map(({ node, times, lag = 0, integral = true }) => {
         const end = run.stopped?.t ?? Number.POSITIVE_INFINITY; // nothing is known later
         const all = lag > 0 ? run.lagged(node, lag, times) : times.map((t) => (t < 0 ? 0 : run.leaving(node, t, 1)));
-        const value = all.map((c, i) => (times[i] > end ? Number.NaN : c));
+        const value = all.map((c, i) => (times[i] > end ? Number.NaN : by * c));
         // What a detector has not shown yet, it holds.
         const sum = (t: number, i: number): number =>
-          t < 0 ? 0 : t > end ? Number.NaN : run.integral(node, t) + spikesUntil(run, node, t, course) - lag * value[i];
+          t < 0
+            ? 0
+            : t > end
+              ? Number.NaN
+              : by * (run.integral(node, t) + spikesUntil(run, node, t, course)) - lag * value[i];
         return { value, integral: integral && course.constant ? times.map(sum) : new Float64Array(times.length) };
       });
       const { stopped } = run;
@@ -81,11 +88,11 @@ export function integrate(plant: Plant, course: FlowCourse, horizon: number, put
       };
     },
     balance(drive, until) {
-      const run = runOf(drive, []);
+      const { run, by } = runOf(drive, []);
       const known = run.stopped && run.stopped.t < until ? Number.NaN : 1;
-      const left = known * outlets.reduce((sum, node) => sum + run.left(node, until), 0);
-      const inside = known * run.inside();
-      const injected = run.injected(until);
+      const left = by * known * outlets.reduce((sum, node) => sum + run.left(node, until), 0);
+      const inside = by * known * run.inside();
+      const injected = by * run.injected(until);
       const recovered = left + inside;
       return {
         injected,
@@ -95,6 +102,28 @@ export function integrate(plant: Plant, course: FlowCourse, horizon: number, put
         closure: injected > 0 ? Math.abs(injected - recovered) / injected : 0,
       };
     },
+  };
+}
+
+/** Amounts are followed as they are between these; tolerances of others would fall out of what a double holds. */
+const usual = { least: 1e-150, most: 1e150 };
+
+/** What to take as one: a power of two, or 1. */
+function measureOf({ drive, before }: Put): number {
+  let size = Math.abs(drive.amount);
+  for (const list of [drive.level, drive.slope, before ?? []]) for (const x of list) size = Math.max(size, Math.abs(x));
+  if (!(size > 0) || !Number.isFinite(size) || (size > usual.least && size < usual.most)) return 1;
+  return 2 ** Math.round(Math.log2(size));
+}
+
+function over(put: Put, by: number): Put {
+  if (by === 1) return put;
+  const { drive, before } = put;
+  const part = (x: Float64Array): Float64Array => x.map((v) => v / by);
+  return {
+    ...put,
+    drive: { ...drive, amount: drive.amount / by, level: part(drive.level), slope: part(drive.slope) },
+    before: before && part(before),
   };
 }
 

@@ -32,8 +32,8 @@ export interface StageAsk {
   readonly scale: number;
   /** How far to go, s. */
   readonly until: number;
-  /** Shortest delay of a tube in a loop, s, which no step may outlast; Infinity without. */
-  readonly loop: number;
+  /** No step is longer, s: a part of the mean time, and of the shortest delay of a tube in a loop. */
+  readonly step: number;
   /** How long a step from t may be at most, s. */
   readonly longest: (t: number) => number;
   readonly breaks: Float64Array;
@@ -151,8 +151,8 @@ export function runStage(stage: Stage, ask: StageAsk, given: (answer: StageAnswe
   const stops = [...ask.breaks].filter((t) => t > 0 && t < far);
   stops.push(far);
   const slotOf = new Map(held.map((h, i) => [h.node, i]));
-  // Steps through a loop of tubes are never longer than its delay: what cannot end is not begun.
-  if (ask.until > mostSteps * ask.loop) {
+  // What cannot end is not begun.
+  if (ask.until > mostSteps * ask.step) {
     answer.stopped = { t: 0, why: "too-many-steps", node: 0 };
     return answer;
   }

@@ -1,6 +1,7 @@
 import { describe, expect, test } from "vitest";
 import { exact } from "../../src/simulate/exact.js";
 import { laplace } from "../../src/simulate/laplace.js";
+import { instant } from "../../src/simulate/linear-system.js";
 import { ode } from "../../src/simulate/ode.js";
 import { engineFor } from "../../src/simulate/trace.js";
 import { tracerResponse } from "../../src/simulate/tracer.js";
@@ -172,4 +173,38 @@ outlets: [out]
     const { balance } = tracerResponse(plant, { at: "feed", form: "pulse" }, [1, 3], { engine: ode });
     expect(balance.closure).toBeLessThan(1e-9);
   }
+});
+
+test("the amount put in is a factor, however large or small a double can hold it", () => {
+  const plant = plantOf(
+    vessel("  a: {kind: stirred, volume: 1 L, to: b}\n  b: {kind: dispersed, peclet: 20, volume: 2 L, to: out}"),
+  );
+  const unit = plant.volume.active / plant.feeds[0].flow;
+  const times = Float64Array.from({ length: 21 }, (_, i) => (i * 3 * unit) / 20);
+  const entry = plant.entry.get("in") as number;
+  const { node } = plant.outlets[0];
+  const seen = (amount: number) => {
+    const tracing = ode.trace(plant, entry, 3 * unit);
+    const drive = { ...instant(amount) };
+    return { ...tracing.see(drive, [{ node, times }]).seen[0], closure: tracing.balance(drive, 3 * unit).closure };
+  };
+  const one = seen(1);
+  const peak = peakOf(one.value);
+  for (const [amount, digits] of [
+    [1e306, 1e-11],
+    [1e-290, 1e-11],
+    [1e-310, 1e-6], // few digits are left in such numbers themselves
+  ]) {
+    const other = seen(amount);
+    other.value.forEach((c, i) => {
+      expect(Math.abs(c / amount - one.value[i])).toBeLessThan(digits * peak);
+    });
+    expect(other.closure).toBeLessThan(Math.max(1e-9, digits));
+  }
+});
+
+test("a time of more mean times than it may make steps is refused at once, and said", () => {
+  const plant = plantOf(vessel("  a: {kind: stirred, volume: 1e-150 L, to: out}"));
+  const { stopped } = tracerResponse(plant, { at: "in", form: "pulse" }, [3600], { engine: ode });
+  expect(stopped).toContain("too many steps");
 });
