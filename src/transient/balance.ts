@@ -43,7 +43,7 @@ export function amountsOf(run: Run, plant: Plant): Amounts {
     const body = follow[node];
     if (body?.is !== "parcels" || sort[node] === "joint" || sort[node] === "none") continue;
     const flow = plant.columns.inflow[node];
-    const inside = parcelsIn(run, node);
+    const inside = body.stays ? apartIn(run, node, body.mean) : parcelsIn(run, node);
     for (let i = 0; i < width; i++) {
       before[i] += flow * inside.before[i];
       held[i] += flow * inside.now[i];
@@ -56,6 +56,16 @@ export function amountsOf(run: Run, plant: Plant): Amounts {
     add(made, -flow);
   }
   return { fed, left, made, before, held };
+}
+
+/** What a body of parcels that stay apart holds at 0 and at the end, over its flow. */
+function apartIn(run: Run, node: number, mean: number): { before: Float64Array; now: Float64Array } {
+  const inside = (t: number): Float64Array => {
+    const mixture = new Float64Array(run.ask.scene.width);
+    run.inside(node, t, mixture);
+    return mixture.map((x) => x * mean);
+  };
+  return { before: inside(0), now: inside(run.ask.horizon) };
 }
 
 /** What a tube holds at 0 and at the end, over its flow: every parcel by when it entered. */

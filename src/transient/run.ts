@@ -3,6 +3,7 @@ import { arrivals } from "../simulate/arrivals.js";
 import { steadyCourse } from "../simulate/flow-course.js";
 import type { Drive } from "../simulate/linear-system.js";
 import type { FeedSignal } from "./feed-signal.js";
+import { type ParcelSignal, parcelSignal } from "./parcel-signal.js";
 import { type PieceBasis, pieceBasis } from "./pieces.js";
 import type { Scene } from "./scene.js";
 import { MixedSignal, type Signal } from "./signal.js";
@@ -10,7 +11,7 @@ import { Stage } from "./stage.js";
 import { type Fineness, type StageRun, stageRun } from "./stage-run.js";
 import type { Start } from "./start.js";
 import { startingState } from "./starting-state.js";
-import { tubeSignal } from "./tube-signal.js";
+import { type TubeAsk, tubeSignal } from "./tube-signal.js";
 
 /** Parts of the shortest delay of a loop that a step may take, and a piece of what leaves a tube: together they are less than it. */
 const stepInLoop = 0.55;
@@ -47,6 +48,8 @@ export class Run {
   readonly stages: { readonly stage: Stage; readonly run: StageRun; readonly first: Float64Array }[] = [];
   readonly stopped: Stopped | undefined;
   private readonly signals = new Map<number, Signal>();
+  /** Bodies of parcels that stay apart. */
+  private readonly apart = new Map<number, ParcelSignal>();
   private readonly breaks: readonly Float64Array[];
   private readonly jumps: ReadonlyMap<number, Float64Array>;
   /** Shortest delay in the circles of each stage, s. */
@@ -143,7 +146,7 @@ export class Run {
       late.inlet ??= this.entering(source);
       return late.inlet;
     };
-    return tubeSignal({
+    const ask: TubeAsk = {
       scene,
       node: source,
       delay: body.delay,
@@ -157,7 +160,50 @@ export class Run {
       basis: this.basis,
       breaks: this.jumps.get(source) ?? new Float64Array(0),
       longest: () => Math.min(loop, horizon),
+    };
+    if (!body.stays) return tubeSignal(ask);
+    const entries = this.entries(source);
+    const apart = parcelSignal({
+      ...ask,
+      stays: body.stays,
+      mean: body.mean,
+      horizon,
+      entries,
+      entering: this.enteringBefore(source),
     });
+    this.apart.set(source, apart);
+    return apart.signal;
+  }
+
+  /** What a body of parcels that stay apart holds over its volume, once its signal is there. */
+  inside(node: number, t: number, out: Float64Array): void {
+    this.signal(node);
+    if (!this.apart.get(node)?.inside(t, out)) out.fill(Number.NaN);
+  }
+
+  /** Times at which what enters a node may jump or kink. */
+  private entries(node: number): Float64Array {
+    const { scene, feeds } = this.ask;
+    const times = [...scene.blend(node).keys()].flatMap((source) =>
+      source < scene.sort.length
+        ? Array.from(this.jumps.get(source) ?? [])
+        : Array.from(feeds[source - scene.sort.length].times),
+    );
+    return sorted(times.filter((t) => t >= 0));
+  }
+
+  /** What entered a node before, in balance; nothing where it starts with what it holds. */
+  private enteringBefore(node: number): Float64Array {
+    const { scene, start, feeds } = this.ask;
+    const mixture = new Float64Array(scene.width);
+    if (start.is !== "steady") return mixture;
+    for (const [source, part] of scene.blend(node)) {
+      const leaving = new Float64Array(scene.width);
+      if (source < scene.sort.length) leaving.set(start.leaving(source));
+      else feeds[source - scene.sort.length].read(-1, -1, leaving, 0);
+      for (let i = 0; i < scene.width; i++) mixture[i] += part * leaving[i];
+    }
+    return mixture;
   }
 
   private isHeld(node: number): boolean {
@@ -181,17 +227,7 @@ export class Run {
 
   private startOf(stage: Stage): Float64Array {
     const { scene, start } = this.ask;
-    return startingState(scene, stage, start, (node) => {
-      const mixture = new Float64Array(scene.width);
-      if (start.is !== "steady") return mixture;
-      for (const [source, part] of scene.blend(node)) {
-        const leaving = new Float64Array(scene.width);
-        if (source < scene.sort.length) leaving.set(start.leaving(source));
-        else this.ask.feeds[source - scene.sort.length].read(-1, -1, leaving, 0);
-        for (let i = 0; i < scene.width; i++) mixture[i] += part * leaving[i];
-      }
-      return mixture;
-    });
+    return startingState(scene, stage, start, (node) => this.enteringBefore(node));
   }
 
   /** Bodies whose outflow is needed for what is looked at, for another stage, or by a tube. */

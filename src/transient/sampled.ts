@@ -17,6 +17,8 @@ export interface Source {
   longest(t: number): number;
   /** s: a time that matters, for measure. */
   readonly unit: number;
+  /** How many tolerances what it gives may be off by itself; default 1. */
+  readonly blur?: number;
 }
 
 /** A mixture that can be had time by time, made into polynomials as far as it is asked for, each as long as it fits. */
@@ -103,7 +105,10 @@ export class Sampled implements Signal {
       for (let i = 0; i < width; i++) {
         let sum = 0;
         for (let p = 0; p < weights.length; p++) sum += weights[p] * rows[p][i];
-        worst = Math.max(worst, Math.abs(sum - made[i]) / (relative * Math.abs(made[i]) + absolute));
+        worst = Math.max(
+          worst,
+          Math.abs(sum - made[i]) / ((source.blur ?? 1) * (relative * Math.abs(made[i]) + absolute)),
+        );
       }
     }
     return worst;
