@@ -8,6 +8,7 @@ import { collector, hasErrors, type Report } from "../problems/report.js";
 import { trialOn } from "../resolve/trial-on.js";
 import { untraceable } from "../simulate/trace.js";
 import { formatQuantity } from "../units/format.js";
+import { condense } from "./condense.js";
 import { criteriaOf } from "./criteria.js";
 import { estimatesOf } from "./estimates.js";
 import { findingsOf } from "./findings.js";
@@ -19,7 +20,7 @@ import { type Problem as LinearProblem, problemWith } from "./problem.js";
 import { notLinear, profilesOf } from "./profiles.js";
 import { cannotFollow } from "./reacting-model.js";
 import type { Fit, FittedParameter, FittedReading, FoundOptimum } from "./result.js";
-import { descend, fully, type SearchResult, searchFrom, type Watch } from "./search.js";
+import { descend, type Effort, fully, type SearchResult, searchFrom, type Watch } from "./search.js";
 import { type Settled, settle } from "./settle.js";
 import { type Setup, valuesAt } from "./setup.js";
 import type { StartPlan } from "./starts.js";
@@ -107,6 +108,9 @@ function anySignal({ blocks }: Setup, report: Report): boolean {
 /** Points that the search for the right valley looks at; the last descent takes them all. */
 const searchPoints = 600;
 
+/** The end of a descent that began at the optimum but for rounding. */
+const atLast: Effort = { ...fully, polish: false };
+
 function search(setup: Setup, problem: LinearProblem, file: Float64Array, plan: StartPlan, watch: Watch): SearchResult {
   if (file.length === 0) return alone(problem, file);
   const blocks = thinned(setup.blocks, searchPoints);
@@ -114,9 +118,14 @@ function search(setup: Setup, problem: LinearProblem, file: Float64Array, plan: 
   const coarse: Setup = { ...setup, blocks, observations: countOf(blocks) };
   const found = searchFrom(problemWith(coarse, weightsFor(coarse).weight), file, plan, watch);
   if (!found.best) return found;
-  const best = { ...descend(problem, found.best.x, fully, watch), reached: found.best.reached };
+  // All readings are met by way of few numbers that say the same, where there are such; then by themselves.
+  const margin = Math.ceil((2 * setup.observations) / coarse.observations);
+  const close = condense(problem, found.best.x, margin);
+  const near = close ? descend(close, found.best.x, fully, watch).x : found.best.x;
+  const best = { ...descend(problem, near, close ? atLast : fully, watch), reached: found.best.reached };
   const others = found.optima.slice(1).map((o) => ({ ...o, sum: problem.evaluate(o.x)?.ofAll ?? Infinity }));
-  return { best, optima: [best, ...others], cancelled: watch.cancelled() };
+  const stands = close && { problem: close, standsFor: problem };
+  return { best, optima: [best, ...others], cancelled: watch.cancelled(), close: stands };
 }
 
 /** Nothing to search: the only point there is. */
@@ -141,7 +150,8 @@ function resultOf(setup: Setup, settled: Settled, found: SearchResult, profile: 
   const readings = readingsOf(setup, settled);
   const told = converged && !watch.cancelled();
   const profiles = profile && told ? profilesOf(settled, estimates, watch) : undefined;
-  const notHolding = told && !profiles ? notLinear(settled, estimates, watch) : [];
+  const rises = found.close?.standsFor === problem ? found.close.problem : problem;
+  const notHolding = told && !profiles ? notLinear(rises, x, estimates, watch) : [];
   return {
     parameters: found.cancelled ? estimates.parameters.map(unsure) : estimates.parameters,
     values: valuesAt(setup, x),

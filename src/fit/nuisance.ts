@@ -47,20 +47,23 @@ export function projectorFor(block: Block, weight: Float64Array): Projector {
     if (rows && phi) whiten(rows, phi, values);
     return values;
   };
+  const weigh = (values: Float64Array, into = new Float64Array(n)): Float64Array => {
+    if (block.condensed) block.condensed.weigh(values, into);
+    else for (let i = 0; i < n; i++) into[i] = weight[from + i] * values[i];
+    return apart(into);
+  };
   const fixed: Float64Array[] = [];
-  if (declared.baseline !== "none") fixed.push(apart(column(n, (i) => weight[from + i])));
-  if (declared.baseline === "drift")
-    fixed.push(apart(column(n, (i) => (weight[from + i] * (time[i] - origin)) / span)));
+  if (declared.baseline !== "none") fixed.push(weigh(new Float64Array(n).fill(1)));
+  if (declared.baseline === "drift") fixed.push(weigh(time.map((t) => (t - origin) / span)));
   const basis = orthonormal(fixed);
-  const target = apart(column(n, (i) => weight[from + i] * measured[i]));
+  const target = block.condensed ? block.condensed.target : weigh(measured);
   const targetLeft = Float64Array.from(target);
   removeTwice(targetLeft, basis);
   const curve = new Float64Array(n);
 
   const project = (model: Float64Array, out: Float64Array): LinearTerms => {
     let scale = 1;
-    for (let i = 0; i < n; i++) curve[i] = weight[from + i] * model[i];
-    apart(curve);
+    weigh(model, curve);
     removeTwice(curve, basis);
     if (free) {
       const norm = dot(curve, curve);
@@ -87,8 +90,7 @@ export function projectorFor(block: Block, weight: Float64Array): Projector {
   // Offset and drift follow from what the residual leaves of the data: fixed . coefficients = target - scale curve - residual.
   const baselineOf = (model: Float64Array, scale: number, out: Float64Array): { offset: number; drift: number } => {
     if (fixed.length === 0) return { offset: 0, drift: 0 };
-    for (let i = 0; i < n; i++) curve[i] = weight[from + i] * model[i];
-    apart(curve);
+    weigh(model, curve);
     for (let i = 0; i < n; i++) curve[i] = target[i] - scale * curve[i] - out[from + i];
     const second = basis.length > 1 ? dot(basis[1], curve) / dot(basis[1], fixed[1]) : 0;
     const first =
@@ -98,15 +100,14 @@ export function projectorFor(block: Block, weight: Float64Array): Projector {
 
   const columns = (model: Float64Array): Float64Array[] => {
     const list = fixed.map((c, k) => (k === 1 ? c.map((x) => x * span) : c));
-    return free ? [apart(column(n, (i) => weight[from + i] * model[i])), ...list] : list;
+    return free ? [weigh(model), ...list] : list;
   };
   const moved = new Float64Array(n);
   const slopes = (model: Float64Array, of: readonly (Float64Array | undefined)[], out: Float64Array): void => {
     let scale = 1;
     let norm = 0;
     if (free) {
-      for (let i = 0; i < n; i++) curve[i] = weight[from + i] * model[i];
-      apart(curve);
+      weigh(model, curve);
       removeTwice(curve, basis);
       norm = dot(curve, curve);
       scale = norm > 0 ? dot(curve, targetLeft) / norm : 0;
@@ -114,8 +115,7 @@ export function projectorFor(block: Block, weight: Float64Array): Projector {
     for (let j = 0; j < of.length; j++) {
       const slope = of[j];
       if (!slope) continue;
-      for (let i = 0; i < n; i++) moved[i] = weight[from + i] * slope[i];
-      apart(moved);
+      weigh(slope, moved);
       removeTwice(moved, basis);
       // d(y - s c) = -s dc - ds c, s = c.y / c.c
       const grows = norm > 0 ? (dot(moved, targetLeft) - 2 * scale * dot(curve, moved)) / norm : 0;
@@ -127,9 +127,6 @@ export function projectorFor(block: Block, weight: Float64Array): Projector {
   };
   return { terms: fixed.length + (free ? 1 : 0), project, slopes, columns, apart: apartOfAll };
 }
-
-const column = (n: number, at: (i: number) => number): Float64Array =>
-  Float64Array.from({ length: n }, (_, i) => at(i));
 
 function dot(a: Float64Array, b: Float64Array): number {
   let sum = 0;

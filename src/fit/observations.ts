@@ -1,5 +1,6 @@
 import { concentrationsOf, type Reading, readingLabel, type Trial } from "../model/trial.js";
 import type { Unit } from "../units/unit.js";
+import type { Condensed } from "./condensed.js";
 
 /** The points of one reading that a fit looks at: calibrated, without what is left out. */
 export interface Block {
@@ -20,6 +21,8 @@ export interface Block {
   readonly censored: Int8Array | undefined;
   /** Of censored points in a problem that counts them: share of the information of a seen one. */
   readonly information?: Float64Array;
+  /** Where few points stand for many: the points are then its own, `measured` is its target, and it knows the weights. */
+  readonly condensed?: Condensed;
   /** Correlation time of errors that hang together by declaration, s; undefined where they do not. */
   readonly hangsTogether?: number;
   /** Readings of one dimension share a group, and with it one unknown variance. */

@@ -1,4 +1,5 @@
 import type { Estimates } from "./estimates.js";
+import type { Problem } from "./problem.js";
 import { profileOf } from "./profile.js";
 import type { FittedProfile } from "./result.js";
 import { closely, descend, type Watch } from "./search.js";
@@ -50,10 +51,17 @@ const tolerated = 1.5;
 /**
  * Looks at the ends of the linear intervals: there the sum of squares, all others at their best, should have risen by t^2 times
  * the residual variance. Cheap: most are settled by where linear theory puts the others.
+ * @param problem  the fit's own, or one that stands for it near its end
  * @see D.M. Bates, D.G. Watts, J. R. Statist. Soc. B 42 (1980) 1-25, for what makes it fail
  */
-export function notLinear({ problem, x, at }: Settled, { t, variance, ways }: Estimates, watch: Watch): NotLinear[] {
+export function notLinear(
+  problem: Problem,
+  x: Float64Array,
+  { t, variance, ways }: Estimates,
+  watch: Watch,
+): NotLinear[] {
   const { coordinates } = problem.setup;
+  const least = problem.evaluate(x)?.ofAll ?? Number.NaN;
   return coordinates.flatMap((c, j): NotLinear[] => {
     const { along, error } = ways[j];
     if (!Number.isFinite(error) || !(error > 0) || !along.every(Number.isFinite)) return [];
@@ -61,13 +69,13 @@ export function notLinear({ problem, x, at }: Settled, { t, variance, ways }: Es
       const point = x.map((u, i) => u + side * t * error * along[i]);
       const inside = coordinates.every((d, i) => point[i] >= d.from && point[i] <= d.to);
       const there = inside ? problem.evaluate(point) : undefined;
-      return there ? [{ point, times: (there.ofAll - at.ofAll) / (t * t * variance) }] : [];
+      return there ? [{ point, times: (there.ofAll - least) / (t * t * variance) }] : [];
     });
     const off = (times: number): number => Math.max(times, 1 / Math.max(times, 1e-9));
     const [worst] = ends.sort((a, b) => off(b.times) - off(a.times));
     if (!worst || off(worst.times) <= tolerated) return [];
     const { sum } = descend(problem, worst.point, closely, watch, j);
-    const times = (sum - at.ofAll) / (t * t * variance);
+    const times = (sum - least) / (t * t * variance);
     return off(times) > tolerated ? [{ name: c.name, times }] : [];
   });
 }

@@ -24,6 +24,8 @@ export interface SearchResult {
   /** Distinct ends of the polished descents, best first; `best` is the first. */
   readonly optima: readonly Optimum[];
   readonly cancelled: boolean;
+  /** A problem of fewer points that stands for another near the best. */
+  readonly close?: { readonly problem: Problem; readonly standsFor: Problem } | undefined;
 }
 
 /**

@@ -1,0 +1,31 @@
+import { Condenser } from "./condensed.js";
+import type { Block } from "./observations.js";
+import { type Problem, problemWith } from "./problem.js";
+
+/** Least factor in points that is worth it. */
+const worth = 4;
+
+/**
+ * The same least-squares problem said by far fewer points, as good as the whole near a point: where the curve there is smooth, a
+ * stretch of readings is put down to the few values that say all that they say of a polynomial through its nodes.
+ * @param margin  readings: so far to either side of what is not smooth every reading is kept, as fronts may still move
+ * @returns undefined where that gains little, or where readings are censored or hang together, or facts are held
+ */
+export function condense(problem: Problem, x: Float64Array, margin: number): Problem | undefined {
+  const { setup, weight } = problem;
+  if (problem.priors.length > 0 || setup.blocks.some((b) => b.censored || b.hangsTogether !== undefined))
+    return undefined;
+  const at = problem.evaluate(x);
+  if (!at) return undefined;
+  let from = 0;
+  const blocks = setup.blocks.map((b, k): Block => {
+    const own = weight.subarray(b.from, b.from + b.time.length);
+    const condensed = new Condenser(b.time, b.measured, own, at.curves[k], margin).condensed();
+    const { time, target } = condensed;
+    const block = { ...b, from, time, measured: target, doubts: [], condensed };
+    from += time.length;
+    return block;
+  });
+  if (from * worth > setup.observations) return undefined;
+  return problemWith({ ...setup, blocks, observations: from }, new Float64Array(from).fill(1));
+}
