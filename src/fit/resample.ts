@@ -10,9 +10,11 @@ import { hangingTogether } from "./hanging-together.js";
 import type { Facts } from "./held.js";
 import { fullJacobian } from "./jacobian.js";
 import { modelOf } from "./model-of.js";
+import type { Block } from "./observations.js";
 import { prepare } from "./prepare.js";
 import { type Prior, problemWith } from "./problem.js";
-import { descend, type Effort, type Watch } from "./search.js";
+import { descendCensored, seenWithinLimits } from "./refit-censored.js";
+import { descend, type Effort, type Optimum, type Watch } from "./search.js";
 import { freedomOf, type Settled, settle } from "./settle.js";
 import type { Setup } from "./setup.js";
 import { delayWalks, withCoordinate } from "./starts.js";
@@ -57,7 +59,7 @@ const unwatched: Watch = { cancelled: () => false, progress: () => {} };
 /**
  * Refits of a network to data made anew from its fit, each from the optimum: what is declared with a `±` and what a calibration
  * leaves open are drawn anew as well. Residuals are drawn within each reading, centred, and as large as the degrees of freedom
- * make them.
+ * make them. Readings of which some were beyond a limit get normal errors, and those that then lie beyond it are censored.
  * @returns undefined where the values make no fit
  * @see B. Efron, R. Tibshirani, An Introduction to the Bootstrap, Chapman & Hall 1993, ch. 9; blocks: H.R. Künsch, Ann. Statist. 17 (1989) 1217-1241
  */
@@ -117,15 +119,19 @@ class Resampler implements Refits {
     const draw = random(this.seed * 2 ** 24 + r);
     const measured = this.measured(draw);
     const { setup } = problem;
-    const blocks = setup.blocks.map((b, k) => ({ ...b, measured: measured[k] }));
+    const blocks = setup.blocks.map(
+      (b, k): Block => (b.censored ? seenWithinLimits(b, measured[k]) : { ...b, measured: measured[k] }),
+    );
     const deviations = setup.constants.map(() => draw.normal());
     const alter = (facts: Facts): void => {
       for (const [i, c] of setup.constants.entries()) c.move(facts, deviations[i] * c.sd);
     };
     const again: Setup = { ...setup, blocks, ...(deviations.length > 0 ? { alter } : {}) };
     const priors = problem.priors.map((prior) => redrawn(prior, x[prior.index], draw.normal()));
-    const refitted = problemWith(again, problem.weight, priors);
-    let best = descend(refitted, x, refitting, unwatched);
+    const found = this.first(again, priors);
+    if (!found) return undefined;
+    const { problem: refitted } = found;
+    let best: Pick<Optimum, "x" | "sum" | "converged"> = found;
     for (const { index, gap } of this.gaps) {
       for (const gaps of [-1, 1]) {
         // A front in the next gap is worth a descent where it is nearly as good as it stands.
@@ -140,17 +146,28 @@ class Resampler implements Refits {
     return best.converged ? setup.coordinates.map((c, j) => c.toSi(best.x[j])) : undefined;
   }
 
+  /** The first descent, from the fit. */
+  private first(setup: Setup, priors: readonly Prior[]) {
+    const { problem, x, at } = this.settled;
+    if (problem.setup.blocks.some((b) => b.censored))
+      return descendCensored(setup, priors, { x, at, before: problem.weight }, refitting, unwatched);
+    const refitted = problemWith(setup, problem.weight, priors);
+    return { problem: refitted, ...descend(refitted, x, refitting, unwatched) };
+  }
+
   /** New data of every reading. */
   private measured(draw: Random): Float64Array[] {
-    const { problem, at } = this.settled;
+    const { problem, at, weights } = this.settled;
     return problem.setup.blocks.map((b, k) => {
       const n = b.time.length;
       const residuals = at.residuals.subarray(b.from, b.from + n);
-      const errors = this.errors(k, residuals, draw);
+      // What was not seen does not show how it spreads.
+      const errors = b.censored ? residuals.map(() => this.spread * draw.normal()) : this.errors(k, residuals, draw);
       const doubts = b.doubts.map(() => draw.normal());
       return this.fitted[k].map((y, i) => {
         const doubt = b.doubts.reduce((sum, d, j) => sum + doubts[j] * d[i], 0);
-        return y + errors[i] / problem.weight[b.from + i] + doubt;
+        const sigma = b.censored ? weights.sigma[b.from + i] : 1 / problem.weight[b.from + i];
+        return y + errors[i] * sigma + doubt;
       });
     });
   }

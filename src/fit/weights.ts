@@ -12,6 +12,8 @@ import type { Setup } from "./setup.js";
 export interface Weights {
   /** 1 / SI per observation. */
   readonly weight: Float64Array;
+  /** Standard deviation of each observation, SI, but for a factor where there is no `noise:`; of censored ones too. */
+  readonly sigma: Float64Array;
   /** Sum of ln sigma^2 of the observations, sigma in the unit of their group, and of what hanging together takes from it: the part of the likelihood that weights carry. */
   readonly logVariances: number;
   /** Variances and correlation times that were estimated. */
@@ -32,6 +34,7 @@ export interface Weights {
  */
 export function weightsFor(setup: Setup, fitted?: Evaluation & { readonly before: Float64Array }): Weights {
   const weight = new Float64Array(setup.observations);
+  const sigmas = new Float64Array(setup.observations);
   const groups = Math.max(...setup.blocks.map((b) => b.group)) + 1;
   const anyNoise = setup.blocks.some((b) => b.declared.noise);
   const anyCensored = setup.blocks.some((b) => b.censored);
@@ -55,6 +58,7 @@ export function weightsFor(setup: Setup, fitted?: Evaluation & { readonly before
         : spread
           ? spread[b.group]
           : b.unit.factor;
+      sigmas[b.from + i] = sigma;
       const side = b.censored?.[i] ?? 0;
       if (side !== 0) {
         // Before there is a fit, what was not seen says nothing.
@@ -75,6 +79,7 @@ export function weightsFor(setup: Setup, fitted?: Evaluation & { readonly before
   const unknown = new Set(setup.blocks.filter((b) => !b.declared.noise).map((b) => b.group)).size;
   return {
     weight,
+    sigma: sigmas,
     logVariances,
     variances: Math.max(1, unknown) + times,
     moving: moving || times > 0,

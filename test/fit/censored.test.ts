@@ -1,6 +1,7 @@
 import { describe, expect, test } from "vitest";
 import { standFor } from "../../src/fit/censored.js";
 import { fit } from "../../src/fit/fit.js";
+import { refitsOf } from "../../src/fit/resample.js";
 import type { Network } from "../../src/model/network.js";
 import type { Trial } from "../../src/model/trial.js";
 import { normalCdf } from "../../src/numerics/distributions.js";
@@ -69,6 +70,25 @@ describe("a fit to readings of which many are below the limit of detection", () 
     expect(Math.abs(mean(found.believed))).toBeGreaterThan(3 * Math.abs(mean(found.censored)));
     expect(mean(found.claimed) / scatter).toBeGreaterThan(0.5);
     expect(mean(found.claimed) / scatter).toBeLessThan(2);
+  });
+
+  test("refits are censored anew, and scatter by what the fit says", () => {
+    const noise = random(8);
+    const csv = `t,c\n${times.map((t) => `${t},${Math.max(limit, exact(t) + sd * noise.normal())}`).join("\n")}\n`;
+    const text = `trial: T\nformat: 1\ninjection: {at: feed, pulse: 100 g}\nreadings: [{at: product, file: l.csv, time: {column: t, unit: min}, value: {column: c, unit: g/L}, noise: {floor: ${sd} g/L}, limits: {below: ${limit} g/L}}]\n`;
+    const { document } = parseTrial(text, { path: "t.yaml", read: () => csv });
+    const trial = document as Trial;
+    const { fit: found } = fit(network, [trial], { starts: 0 });
+    if (!found) throw new Error("no fit");
+    const { renewal: at } = found.values;
+    const refits = refitsOf(network, [trial], { values: found.values, seed: 4 });
+    const logs = Array.from({ length: 60 }, (_, r) => Math.log((refits?.refit(r)?.[1] ?? Number.NaN) / at));
+    const mean = logs.reduce((sum, v) => sum + v, 0) / logs.length;
+    const scatter = Math.sqrt(logs.reduce((sum, v) => sum + (v - mean) ** 2, 0) / (logs.length - 1));
+    const claimed = (found.parameters[1].standardError ?? Number.NaN) / at;
+    expect(Math.abs(mean)).toBeLessThan((4 * scatter) / Math.sqrt(logs.length) + 0.1 * scatter);
+    expect(scatter / claimed).toBeGreaterThan(0.6);
+    expect(scatter / claimed).toBeLessThan(1.6);
   });
 
   test("a detector in saturation: the peak is told by what is beside it", () => {
