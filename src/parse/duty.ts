@@ -1,10 +1,13 @@
 import type { Duty } from "../model/duty.js";
 import { resolveDuty } from "../resolve/duty.js";
 import { chemistryBeside } from "./chemistry.js";
-import { filesOf, type Parsed, type ParseOptions, parseDocument, type Reading } from "./parsed.js";
+import { filesOf, type Held, type Parsed, type ParseOptions, parseDocument, type Reading } from "./parsed.js";
 
-/** Reads a duty and the chemistry that it names. */
-export function parseDuty(text: string | Reading, options: ParseOptions = {}): Parsed<Duty> {
+/**
+ * Reads a duty and the chemistry that it names. Whether it fits a network is checked later (`checkDuty`).
+ * @param held what else is to be asked of a duty that has errors, as far as it could be read
+ */
+export function parseDuty(text: string | Reading, options: ParseOptions = {}, held?: Held<Duty>): Parsed<Duty> {
   const path = options.path ?? "duty.yaml";
   return parseDocument("duty", text, { ...options, path }, (tree, report, adopt) =>
     resolveDuty(
@@ -15,6 +18,7 @@ export function parseDuty(text: string | Reading, options: ParseOptions = {}): P
         tables: filesOf(path, options),
       },
       report,
+      held && ((duty) => held(duty, report, adopt)),
     ),
   );
 }

@@ -4,6 +4,7 @@ import { checkTrial } from "../check/trial.js";
 import type { Duty } from "../model/duty.js";
 import type { Network } from "../model/network.js";
 import type { ChangeDocument, Rival, Study } from "../model/study.js";
+import type { Problem } from "../problems/problem.js";
 import { collector, hasErrors, type Report } from "../problems/report.js";
 import type { Files } from "../read/files.js";
 import { openText } from "../read/open.js";
@@ -40,23 +41,22 @@ export function parseStudy(text: string | Reading, options: ParseOptions = {}): 
         if (rivals[0]) checkTrial(rivals[0].network, trial, tell);
       }),
     );
-    const duties = open("duties", parseDuty);
+    const duties = open("duties", (content, own) =>
+      parseDuty(content, own, (duty, _, take) =>
+        take(firstFaults(rivals, (network, tell) => checkDuty(network, duty, tell))),
+      ),
+    );
     const changes = open("changes", parseChange);
     const listed = { duties: byFile(tree, "duties", duties), changes: byFile(tree, "changes", changes) };
     const sweeps = resolveSweeps(child(tree, "sweeps"), listed, report);
     const aims = resolveAims(child(tree, "aims"), listed, report);
     checkAsked({ rivals, sweeps, aims }, report);
-    for (const { network } of rivals) {
-      const { report: own, problems } = collector();
+    const faults = firstFaults(rivals, (network, own) => {
       for (const trial of trials) checkTrial(network, trial, own);
       for (const duty of duties) checkDuty(network, duty, own);
       if (trials.length > 1) for (const duty of duties) perTrialTold(network, duty, own);
-      // The same slip shows against every rival: once is enough.
-      if (hasErrors(problems)) {
-        adopt(problems);
-        break;
-      }
-    }
+    });
+    adopt(faults);
     return {
       title: textOf(tree, "study") ?? "",
       at: child(tree, "study")?.at ?? tree.at,
@@ -72,6 +72,16 @@ export function parseStudy(text: string | Reading, options: ParseOptions = {}): 
       seed: Number(textOf(tree, "seed") ?? 1),
     };
   });
+}
+
+/** What the first rival finds fault with: the same slip shows against every rival, once is enough. */
+function firstFaults(rivals: readonly Rival[], check: (network: Network, report: Report) => void): Problem[] {
+  for (const { network } of rivals) {
+    const { report, problems } = collector();
+    check(network, report);
+    if (hasErrors(problems)) return problems;
+  }
+  return [];
 }
 
 /** Every file that a list names, with its document where it could be read. */

@@ -36,6 +36,8 @@ export interface StudyReport {
   /** Figures of a regulator's method, a table for each duty that declares one. */
   readonly regulated: readonly { readonly about: string; readonly lines: readonly ReportRegulated[] }[];
   readonly changes: readonly Change[];
+  /** Whether all networks that survive would have one do the same. */
+  readonly decisions: readonly string[];
   /** Figures of duties over their inputs. */
   readonly sweeps: readonly Figure[];
   readonly aims: readonly ReportAim[];
@@ -139,6 +141,8 @@ export interface Prediction {
   /** "conversion of A" */
   readonly name: string;
   readonly estimate: Estimate;
+  /** "at least 2.1": what 95 % of the draws keep, where it is said one-sided. */
+  readonly oneSided?: string;
   /** The same at full segregation and at maximum mixedness, in the same unit; left out where the bounds do not apply. */
   readonly bounds?: { readonly segregated: number; readonly maximumMixedness: number };
   /** Why there are no bounds, or what follows from where the value lies between them. */

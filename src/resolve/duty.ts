@@ -27,9 +27,16 @@ export interface DutyFiles {
  * Binds an operating point: flows, feeds, constants set otherwise, temperature, the figures that count.
  * Whether its names exist in a network is `checkDuty`'s to say.
  * @param tree a document that has passed the shape check
+ * @param faulty is told what could be read of a duty that has an error
  * @returns undefined once an error is reported
  */
-export function resolveDuty(tree: MapNode, path: string, files: DutyFiles, report: Report): Duty | undefined {
+export function resolveDuty(
+  tree: MapNode,
+  path: string,
+  files: DutyFiles,
+  report: Report,
+  faulty?: (duty: Duty) => void,
+): Duty | undefined {
   let good = true;
   const tell: Report = (code, at, data, also) => {
     if (catalogue[code].severity === "error") good = false;
@@ -70,10 +77,9 @@ export function resolveDuty(tree: MapNode, path: string, files: DutyFiles, repor
   const settled = chemistry && good ? settleFeeds(chemistry, feeds, contents, tell) : pure(feeds, contents);
   if (chemistry && settled) massEquations(chemistry, settled, asked, tell);
   const lines = settled && asked.flatMap((line) => settleLimit(line, chemistry, species, settled, tell) ?? []);
-  if (!good || !settled || !lines) return undefined;
-  const { contents: held, ...fed } = settled;
+  const { contents: held, ...fed } = settled ?? pure(feeds, contents);
   const heldAt = child(tree, "contents")?.at;
-  return {
+  const duty: Duty = {
     title: textOf(tree, "duty") ?? "",
     at,
     path,
@@ -85,9 +91,12 @@ export function resolveDuty(tree: MapNode, path: string, files: DutyFiles, repor
     ...(heldAt ? { contents: { at: heldAt, levels: held } } : {}),
     temperature,
     ...(heat ? { heat } : {}),
-    report: lines,
+    report: lines || asked,
     ...(regulated ? { regulated } : {}),
   };
+  if (good && settled && lines) return duty;
+  faulty?.(duty);
+  return undefined;
 }
 
 /** Values under names; each above zero, or not below it. */

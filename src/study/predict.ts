@@ -1,8 +1,10 @@
+import type { Duty } from "../model/duty.js";
 import { predict } from "../reaction/prediction.js";
+import { betterIs } from "./direction.js";
 import { plantOf } from "./operate.js";
 import type { Bounds, Prediction, Ranked } from "./result.js";
 import type { Sample } from "./sample.js";
-import { interval95 } from "./spread.js";
+import { interval95, quantile } from "./spread.js";
 import { spreadsOf } from "./spread-shares.js";
 
 /** A duty's figures for a ranked rival at its fitted values, with intervals from the draws and the bounds of mixing. */
@@ -28,10 +30,21 @@ export function predictDuty(ranked: Ranked, { operation, rows, values }: Sample)
       value: f.value,
       unit: f.unit,
       interval95: interval95(values.map((s) => s?.[k] ?? Number.NaN)),
+      oneSided95: oneSided(duty, k, values),
       bounds: within,
       spread: spreads[k],
       steady: state,
       plant,
     };
   });
+}
+
+/** Fewer draws have no end that is worth telling. */
+const fewest = 20;
+
+function oneSided(duty: Duty, k: number, values: Sample["values"]): Prediction["oneSided95"] {
+  const sign = betterIs(duty, k);
+  const drawn = values.flatMap((v) => (v && !Number.isNaN(v[k]) ? [v[k]] : [])).sort((a, b) => a - b);
+  if (sign === 0 || drawn.length < fewest) return undefined;
+  return { bound: sign > 0 ? "at least" : "at most", value: quantile(drawn, sign > 0 ? 0.05 : 0.95) };
 }

@@ -27,6 +27,10 @@ export interface StudyResult {
   /** Every duty for the best rival, and for the others that survive. */
   readonly predictions: readonly Prediction[];
   readonly changes: readonly ChangeOutcome[];
+  /** What to do by each surviving rival, and whether they agree. */
+  readonly decisions: readonly Decision[];
+  /** Tests on which the best two surviving rivals differ, the most telling first. */
+  readonly telling: readonly TellingTest[];
   /** For every rival that survives and every duty that declares such figures. */
   readonly regulated: readonly RegulatedOutcome[];
   /** For every rival that survives, in the order of the ranking. */
@@ -72,6 +76,8 @@ export interface Prediction {
   readonly unit: Unit;
   /** 2.5 to 97.5 % of the draws; undefined where too few draws gave a figure. */
   readonly interval95: readonly [number, number] | undefined;
+  /** One-sided: what 95 % of the draws keep, on the side that hurts; undefined where better has no direction. */
+  readonly oneSided95: { readonly bound: "at least" | "at most"; readonly value: number } | undefined;
   readonly bounds: Bounds | undefined;
   /** What holds its variance; undefined where nothing is unsure. */
   readonly spread: Spread | undefined;
@@ -121,4 +127,40 @@ export interface RegulatedOutcome {
   readonly figures: RegulatedFigures;
   /** s: 95 % of the draws have at least this t10 (one-sided); undefined where too few gave one. */
   readonly lower: number | undefined;
+}
+
+/** What every network that the data leave standing would have one do for one figure. */
+export interface Decision {
+  /** Index into the duties of the study, and into the report of that duty. */
+  readonly duty: number;
+  readonly line: number;
+  readonly name: string;
+  /** By every surviving rival, best first. */
+  readonly choices: readonly Choice[];
+  /** Do they differ? Then the data do not support the decision yet. */
+  readonly flips: boolean;
+  /** Changes by their chance of being better, averaged over the rivals with their Akaike weights; the surest first. */
+  readonly averaged: readonly { readonly change: ChangeDocument; readonly probabilityBetter: number }[];
+}
+
+export interface Choice {
+  readonly rival: Rival;
+  /** Of the rivals that survive, adding to 1. */
+  readonly weight: number;
+  /** The change that brings most; undefined: none is likely to be better than the vessel as it is. */
+  readonly change: ChangeDocument | undefined;
+  /** What it brings, in the figure's SI unit, above 0 where it is better; and how likely it is better at all. */
+  readonly gain: number;
+  readonly probabilityBetter: number | undefined;
+}
+
+/** A further test on which two rivals differ. */
+export interface TellingTest {
+  readonly rivals: readonly [Rival, Rival];
+  readonly says: string;
+  /**
+   * Root mean square of the difference of the two curves over what a reading scatters and what the fits leave open; above 1
+   * even a few readings tell.
+   */
+  readonly apart: number;
 }

@@ -9,6 +9,7 @@ import { furtherTests } from "../plan/further.js";
 import { sameCurves } from "../plan/same-curve.js";
 import { aimAsked, sweepAsked } from "./asked.js";
 import { changeOutcomes } from "./compare.js";
+import { decisionsOf } from "./decide.js";
 import { drawsOf, type RivalDraws } from "./draws-of.js";
 import { nestedTests } from "./nested.js";
 import { operationOf } from "./operation.js";
@@ -19,6 +20,7 @@ import { residenceOf } from "./residence.js";
 import type { Answered, Ranked, StudyResult } from "./result.js";
 import { type Sample, sampleOf } from "./sample.js";
 import type { Watch } from "./sweep.js";
+import { tellingTests } from "./tell-apart.js";
 import { momentsFacts } from "./trial-facts.js";
 
 export interface StudyOptions {
@@ -112,6 +114,8 @@ export function runStudy(study: Study, options: StudyOptions = {}): StudyResult 
     readings,
     predictions,
     changes,
+    decisions: decisionsOf(study, alive, changes),
+    telling: cancelled() ? [] : tellingTests(alive, study.trials, draws),
     regulated,
     sweeps,
     aims,

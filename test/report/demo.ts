@@ -218,6 +218,7 @@ export const demo: StudyReport = {
     },
   ],
   along: [],
+  decisions: [],
   regulated: [
     {
       about: "Normal production",

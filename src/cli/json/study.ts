@@ -4,6 +4,7 @@ import type {
   Bounds,
   ChangedFigure,
   ChangeOutcome,
+  Decision,
   Prediction,
   Ranked,
   StudyResult,
@@ -29,6 +30,12 @@ export function studyJson(result: StudyResult): Record<string, unknown> {
     readings: result.readings.map(({ trial, moments }) => ({ trial: trial.title, ...momentsResultJson(moments) })),
     predictions: result.predictions.map(predictionJson),
     changes: result.changes.flatMap(changeJson),
+    decisions: result.decisions.map((d) => decisionJson(result, d)),
+    telling: result.telling.map(({ rivals, says, apart }) => ({
+      networks: rivals.map((r) => r.path),
+      says,
+      apart: finite(apart),
+    })),
     regulated: result.regulated.map(({ rival, duty, figures, lower }) => ({
       network: rival.path,
       duty: duty.title,
@@ -64,13 +71,24 @@ function rankedJson({ rival, fit, standing, survives, problems }: Ranked): objec
   };
 }
 
-function predictionJson({ duty, rival, name, value, unit, interval95, bounds, spread }: Prediction): object {
+function predictionJson({
+  duty,
+  rival,
+  name,
+  value,
+  unit,
+  interval95,
+  oneSided95,
+  bounds,
+  spread,
+}: Prediction): object {
   return {
     duty: duty.title,
     network: rival.path,
     name,
     ...quantity(value, unit),
     interval95: intervalJson(interval95, unit),
+    oneSided95: oneSided95 ? { bound: oneSided95.bound, ...quantity(oneSided95.value, unit) } : null,
     bounds: bounds ? boundsJson(bounds, unit) : null,
     ...spreadJson(spread, unit),
   };
@@ -129,6 +147,19 @@ const changedJson = ({
   interval95: intervalJson(interval95, unit),
   difference95: difference95 ? difference95.map((v) => pure(v / unit.factor).value) : null,
   probabilityBetter: probabilityBetter ?? null,
+});
+
+const decisionJson = ({ study }: StudyResult, { duty, name, choices, flips, averaged }: Decision): object => ({
+  duty: study.duties[duty].title,
+  name,
+  flips,
+  choices: choices.map(({ rival, weight, change, probabilityBetter }) => ({
+    network: rival.path,
+    weight,
+    change: change?.title ?? null,
+    probabilityBetter: probabilityBetter ?? null,
+  })),
+  averaged: averaged.map(({ change, probabilityBetter }) => ({ change: change.title, probabilityBetter })),
 });
 
 /** What a sweep or an aim is asked of. */

@@ -3,6 +3,7 @@ import type { Problem } from "../../problems/problem.js";
 import { chance, estimateLine } from "../../report/digits.js";
 import type { AnswerLine } from "../../report/input.js";
 import { reportAims } from "../../report/study/asked.js";
+import { decisionWords } from "../../report/study/decision-words.js";
 import { regulatedCaution, regulatedLines } from "../../report/study/regulated-words.js";
 import type { StudyResult } from "../../study/result.js";
 import { formatNumber } from "../../units/format.js";
@@ -22,6 +23,9 @@ export function studyText(result: StudyResult, answer: readonly AnswerLine[], re
     rankingTable(result),
     predictionsTable(result),
     changesTable(result),
+    decisionWords(result)
+      .map((says) => wrap("  ", says))
+      .join("\n"),
     aimsText(result),
     regulatedText(result),
     report === undefined ? "" : `report: ${report}`,

@@ -1,12 +1,12 @@
 import { drawChanges, type IntervalRow, intervalsTable } from "../../draw/intervals.js";
 import { formatNumber } from "../../units/format.js";
 import { chance } from "../digits.js";
-import { figure, type Html, section, table } from "../html.js";
+import { figure, type Html, list, section, table } from "../html.js";
 import type { Change, StudyReport } from "../input.js";
 import { estimateRow, grouped } from "./rows.js";
 
 /** What each change would bring, beside today. */
-export function changesSection({ changes }: StudyReport): Html {
+export function changesSection({ changes, decisions }: StudyReport): Html {
   const rows = changes.map((c) => [
     c.skipped ? { words: c.name, under: c.skipped } : c.name,
     c.quantity,
@@ -32,7 +32,7 @@ export function changesSection({ changes }: StudyReport): Html {
       caption: `${quantity} after each change, with the chance of being better than today.`,
     });
   });
-  return section("changes", "Changes compared", [...drawn, table("Changes", columns, rows)]);
+  return section("changes", "Changes compared", [...drawn, table("Changes", columns, rows), list(decisions)]);
 }
 
 function changeRow(c: Change): readonly IntervalRow[] {

@@ -2,7 +2,7 @@ import { plotBars } from "../../draw/bars.js";
 import { drawIntervals, type IntervalRow, intervalsTable } from "../../draw/intervals.js";
 import { formatNumber } from "../../units/format.js";
 import { estimateLine } from "../digits.js";
-import { figure, type Html, section, table } from "../html.js";
+import { type Cell, figure, type Html, section, table } from "../html.js";
 import type { Prediction, StudyReport } from "../input.js";
 import { estimateRow, grouped } from "./rows.js";
 
@@ -16,7 +16,7 @@ export function predictionsSection({ predictions, along }: StudyReport): Html {
       : (boundsSay ?? "");
     return [
       { words: p.duty, under: p.name },
-      ...estimateRow("", p.estimate).slice(1),
+      ...valueCells(p),
       bounds && boundsSay ? { words: between, under: boundsSay } : between,
       ...(driven ? [driverWords(p)] : []),
     ];
@@ -45,6 +45,12 @@ export function predictionsSection({ predictions, along }: StudyReport): Html {
     ...spreads(predictions),
     ...along.map(figure),
   ]);
+}
+
+/** Value and interval; below the interval what is kept on the side that hurts. */
+function valueCells(p: Prediction): Cell[] {
+  const [value, interval] = estimateRow("", p.estimate).slice(1);
+  return [value, p.oneSided === undefined ? interval : { words: interval, under: p.oneSided }];
 }
 
 /** "k2 (71 %), corner (20 %)" */

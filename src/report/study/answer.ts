@@ -2,6 +2,7 @@ import type { ChangedFigure, ChangeOutcome, StudyResult } from "../../study/resu
 import { chance, estimateLine } from "../digits.js";
 import type { AnswerLine } from "../input.js";
 import { aimWords } from "./aim-words.js";
+import { decisionWords, tellingWords } from "./decision-words.js";
 import { spreadWords } from "./driver-words.js";
 import { differenceEstimate, estimate, readingUnit } from "./estimate.js";
 import { traitsOf } from "./traits.js";
@@ -23,6 +24,7 @@ export function answerOf(result: StudyResult): AnswerLine[] {
     { about: "How sure", says: sure(result) },
     ...makes(result).map((says) => ({ about: "What it makes", says })),
     ...bestChange(result).map((says) => ({ about: "What to do", says })),
+    ...flips(result).map((says) => ({ about: "What to do", says })),
     ...takes(result).map((says) => ({ about: "What it takes", says })),
     ...measure(result).map((says) => ({ about: "What to measure", says })),
     { about: "Still open", says: open(result) },
@@ -91,6 +93,13 @@ function bestChange(result: StudyResult): string[] {
   return [`${none}${c.change.title}: ${f.name} from ${now} to ${then}, by ${by}${sure}.`];
 }
 
+/** That networks which fit about as well would have one do different things: of the first figure. */
+function flips(result: StudyResult): string[] {
+  return decisionWords(result)
+    .slice(0, 1)
+    .filter((_, k) => result.decisions.filter((d) => d.choices.length > 1)[k].flips);
+}
+
 /** The first aims, by the best rival. */
 function takes(result: StudyResult): string[] {
   const own = result.aims.filter((a) => a.rival === result.ranking[0].rival);
@@ -118,7 +127,10 @@ function open(result: StudyResult): string {
   const best = result.ranking[0];
   const equals = result.ranking.filter((r) => r.survives).length;
   if (equals > 1) {
-    return "Which of the equal networks is right. A test at another flow or stirrer speed, or a probe inside the vessel, would tell.";
+    const test = tellingWords(result.telling);
+    return test === undefined
+      ? "Which of the equal networks is right. A test at another flow or stirrer speed, or a probe inside the vessel, would tell."
+      : `Which of the equal networks is right. ${capital(test)}.`;
   }
   const loose = best.fit?.findings.filter((f) => f.code === "cannot-tell" || f.code === "parameter-at-bound") ?? [];
   if (loose.length > 0) return `${capital(loose[0].message)}. ${capital(loose[0].fix)}.`;

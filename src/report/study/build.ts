@@ -1,7 +1,8 @@
 import type { Ranked, StudyResult } from "../../study/result.js";
 import type { Spread } from "../../study/spread-shares.js";
 import { dimensions } from "../../units/dimension.js";
-import { inUnit } from "../../units/unit.js";
+import { formatNumber } from "../../units/format.js";
+import { inUnit, type Unit } from "../../units/unit.js";
 import { dutyTriggers } from "../duty-cautions.js";
 import type {
   CautionTriggers,
@@ -18,6 +19,7 @@ import { analysesOf } from "./analyses.js";
 import { answerOf } from "./answer.js";
 import { reportAims, sweepFigures, sweepsSkipped } from "./asked.js";
 import { dataQuality, findingsOf } from "./data.js";
+import { decisionWords } from "./decision-words.js";
 import { driverName, methodWords, spreadWords } from "./driver-words.js";
 import { estimate, parameterEstimate, readingUnit } from "./estimate.js";
 import { curveFigures, rivalFigures, vesselFigure } from "./figures.js";
@@ -67,6 +69,7 @@ export function reportOf(
       lines: duty.regulated ? regulatedLines(figures, duty.regulated, rival.network.units, lower) : [],
     })),
     changes: changeRows(result),
+    decisions: decisionWords(result),
     sweeps,
     aims: reportAims(result),
     assumptions: assumptionsOf(result),
@@ -140,8 +143,19 @@ function predictionRow(p: StudyResult["predictions"][number]): Prediction {
       ? { bounds: { segregated: inUnit(b.segregated, unit), maximumMixedness: inUnit(b.maximumMixedness, unit) } }
       : {}),
     ...(b?.says ? { boundsSay: b.says } : {}),
+    ...oneSidedRow(p, unit),
     ...spreadRow(p.spread),
   };
+}
+
+/** Limits are kept or not: of a kill and of what is left over the end that hurts is told. */
+function oneSidedRow(
+  { duty, name, oneSided95 }: StudyResult["predictions"][number],
+  unit: Unit,
+): Pick<Prediction, "oneSided"> {
+  const what = duty.report.find((r) => r.text === name)?.what;
+  if (!oneSided95 || (what !== "log-removal" && what !== "concentration")) return {};
+  return { oneSided: `${oneSided95.bound} ${formatNumber(inUnit(oneSided95.value, unit), 3)} with 95 %` };
 }
 
 function spreadRow(spread: Spread | undefined): Pick<Prediction, "drivers" | "spreadSays" | "spreadMethod"> {
