@@ -5,7 +5,7 @@ import { curvesAt, type Setup, slopesOf } from "./setup.js";
 
 /**
  * Step of a central difference, where one must serve: for trials that start with tracer inside or whose tracer does not follow
- * the liquid, for closed vessels, at a bound where a volume or flow begins to be there, and where undispersed parts of one delay
+ * the liquid (losses and retention in vessels that can be recorded aside), for closed vessels, at a bound where a volume or flow begins to be there, and where undispersed parts of one delay
  * part. Curves are exact to about 1e-13 of their peak (laplace: 1e-10), so that 1e-5 leaves errors near 1e-8.
  */
 const step = 1e-5;

@@ -4,11 +4,8 @@ import { recordPlant } from "../compile/record.js";
 import type { Network } from "../model/network.js";
 import type { Trial } from "../model/trial.js";
 import type { Value } from "../model/value.js";
-import { exact } from "../simulate/exact.js";
-import { recordTrial } from "../simulate/record-trial.js";
+import { isRecordable, recordTrial } from "../simulate/record-trial.js";
 import { Replay } from "../simulate/replay.js";
-import { engineFor } from "../simulate/trace.js";
-import { hasSlopes } from "../simulate/trial-slopes.js";
 
 /** So many sets of names that are set are kept apart for one trial. */
 const mostKept = 8;
@@ -57,7 +54,7 @@ export class Replays {
     const kept = this.kept.get(trial);
     const names = Object.keys(values);
     if (!kept || kept.never || kept.replays.some((r) => sameNames(r.inputs, names))) return false;
-    if (!hasSlopes(plant, trial) || engineFor(plant, horizon) !== exact) {
+    if (!isRecordable(plant, trial, horizon)) {
       kept.never = true;
       return false;
     }

@@ -1,12 +1,16 @@
 import { Part } from "../compile/part.js";
+import type { Plant } from "../compile/plant.js";
 import type { RecordedPlant } from "../compile/record.js";
 import { NotRecorded, type Recorder, recorded, type WhyNot } from "../compile/recorder.js";
-import type { Injection, Trial } from "../model/trial.js";
+import { isClosed } from "../model/network.js";
+import type { Injection, Retained, Trial } from "../model/trial.js";
 import type { Slot } from "../numerics/tape.js";
 import { isLevel } from "../units/basis.js";
+import { exact } from "./exact.js";
 import type { Drive } from "./linear-system.js";
 import { unitDrive } from "./puts.js";
 import { RecordedUnrolling } from "./record-unroll.js";
+import { engineFor } from "./trace.js";
 
 /** A trial on a recorded plant: for every injection one linear system without delays, and what its probes see of it. */
 export interface RecordedTrial {
@@ -54,9 +58,34 @@ export function recordTrial(plant: RecordedPlant, trial: Trial): RecordedTrial |
   });
 }
 
+/** Are they of a sort that may be recorded? Whatever is put into a vessel that is not closed, with steady flows. */
+export const isRecordable = (plant: Plant, trial: Trial, horizon: number): boolean =>
+  !isClosed(plant) &&
+  trial.contents === undefined &&
+  trial.flowLogs === undefined &&
+  trial.tracer?.follows === undefined &&
+  engineFor(plant, horizon) === exact;
+
 function tubesOf({ recorder, plant, volume, inflow }: RecordedPlant): Slot[] {
   const { part } = plant.columns;
   return volume.flatMap((v, i) => (part[i] === Part.Delay ? [recorder.tape.divide(v, inflow[i])] : []));
+}
+
+/** How many times its volume a node has for a tracer that bodies hold back. */
+function heldBy({ recorder, plant }: RecordedPlant, retained: readonly Retained[]): (node: number) => Slot {
+  const { tape } = recorder;
+  const factors = retained.map(({ body, factor }) => {
+    const named = typeof factor === "number" ? undefined : plant.network.names.find((n) => n.name === factor.name);
+    const slot = typeof factor === "number" ? tape.constant(factor) : named ? recorder.named(named.slot) : undefined;
+    if (slot === undefined) throw new NotRecorded();
+    recorder.keepPositive(slot, named ? plant.env[named.slot] : 1);
+    return { body, slot };
+  });
+  return (node) => {
+    const name = plant.columns.nameOf(node);
+    const own = factors.filter(({ body }) => name === body || name.startsWith(`${body}.`));
+    return own.reduce((product, { slot }) => tape.multiply(product, slot), tape.constant(1));
+  };
 }
 
 function recordPut(on: RecordedPlant, trial: Trial, injection: Injection): RecordedPut {
@@ -65,7 +94,8 @@ function recordPut(on: RecordedPlant, trial: Trial, injection: Injection): Recor
   const entry = plant.entry.get(injection.at);
   if (entry === undefined) throw new RangeError(`no place '${injection.at}' in the network`);
   const drive = unitDrive(injection, trial.tracer?.decay ?? 0);
-  const unrolled = new RecordedUnrolling(on, entry, sizeOf(on, injection, entry));
+  const seen = { loss: trial.tracer?.loss ?? 0, held: heldBy(on, trial.tracer?.retained ?? []) };
+  const unrolled = new RecordedUnrolling(on, entry, sizeOf(on, injection, entry), seen);
   const rows = [...unrolled.rows];
   const input = [...unrolled.input];
   const zero = tape.constant(0);

@@ -1,7 +1,7 @@
 import { Part } from "../compile/plant.js";
 import type { RecordedPlant } from "../compile/record.js";
 import { NotRecorded } from "../compile/recorder.js";
-import type { Slot } from "../numerics/tape.js";
+import type { Slot, SmoothFunction } from "../numerics/tape.js";
 
 /** A concentration as a sum over states, and what of it passes undispersed; places on the tape. */
 export interface Sum {
@@ -20,6 +20,12 @@ interface Copy {
 /** More copies of a network than these are left to `unroll`, which knows which of them come too late. */
 const mostCopies = 16;
 
+/** e^(-loss t). */
+const fading = (loss: number): SmoothFunction => ({
+  value: ([t]) => Math.exp(-loss * t),
+  partials: [([t]) => -loss * Math.exp(-loss * t)],
+});
+
 /**
  * `unroll` on a tape: the same balances of copies with clocks of their own, one for each way through tubes. Delays that happen
  * to be equal stay apart.
@@ -34,12 +40,14 @@ export class RecordedUnrolling {
 
   /**
    * @param size  what the unit of the drive stands for
+   * @param tracer  loss of first order, 1/s, and how much more volume than the liquid's each node shows the tracer
    * @throws NotRecorded where tubes lie in circles, joints feed each other round and round, or there are too many ways
    */
   constructor(
     private readonly recorded: RecordedPlant,
     private readonly entry: number,
     private readonly size: Slot,
+    private readonly tracer: { readonly loss: number; readonly held: (node: number) => Slot },
   ) {
     const { plant, recorder } = recorded;
     this.zero = recorder.tape.constant(0);
@@ -64,8 +72,9 @@ export class RecordedUnrolling {
 
   private copy({ delay, seeds }: Pick<Copy, "delay" | "seeds">): { tube: number; inlet: Sum; delay: Slot }[] {
     const { recorded, rows, input } = this;
-    const { plant, volume, inflow, recorder } = recorded;
+    const { plant, inflow, recorder } = recorded;
     const { tape } = recorder;
+    const volume = (i: number): Slot => tape.multiply(recorded.volume[i], this.tracer.held(i));
     const { part } = plant.columns;
     const first = this.copies.length === 0;
     const reached = this.reach(seeds, first);
@@ -102,19 +111,32 @@ export class RecordedUnrolling {
       if (reached.has(i)) outflow.set(i, over(entering(i), inflow[i]));
     }
     for (const [i, state] of states) {
-      const inward = over(entering(i), volume[i]);
+      const inward = over(entering(i), volume(i));
       const row = rows[state];
-      row.set(state, tape.negate(tape.divide(inflow[i], volume[i])));
+      const leaving = tape.divide(inflow[i], volume(i));
+      row.set(state, tape.negate(tape.add(leaving, tape.constant(this.tracer.loss))));
       for (const [s, w] of inward.weights) row.set(s, tape.add(row.get(s) ?? this.zero, w));
       input[state] = inward.direct;
     }
     return [...reached]
       .filter((i) => part[i] === Part.Delay)
-      .map((tube) => ({
-        tube,
-        inlet: over(entering(tube), inflow[tube]),
-        delay: tape.add(delay, tape.divide(volume[tube], inflow[tube])),
-      }));
+      .map((tube) => {
+        const own = tape.divide(volume(tube), inflow[tube]);
+        const inlet = over(entering(tube), inflow[tube]);
+        return { tube, inlet: this.lessLoss(inlet, own), delay: tape.add(delay, own) };
+      });
+  }
+
+  /** What is left of tracer after a time. */
+  private lessLoss(sum: Sum, time: Slot): Sum {
+    const { loss } = this.tracer;
+    if (loss === 0) return sum;
+    const { tape } = this.recorded.recorder;
+    const left = tape.call(fading(loss), [time]);
+    return {
+      weights: new Map([...sum.weights].map(([s, w]) => [s, tape.multiply(w, left)])),
+      direct: tape.multiply(sum.direct, left),
+    };
   }
 
   /** Nodes that tracer gets to without passing another tube. */

@@ -10,7 +10,7 @@ import { recordTrial } from "../../src/simulate/record-trial.js";
 import { Replay } from "../../src/simulate/replay.js";
 import { randomNetwork } from "../simulate/random-network.js";
 import { networkOf } from "./load.js";
-import { parametrised, pulse, times, trialWith, vessel } from "./slope-errors.js";
+import { error, parametrised, pulse, respond, times, trialWith, vessel } from "./slope-errors.js";
 
 const parametersOf = (network: Network): Record<string, number> => {
   const { plant } = compiler(network).compile({});
@@ -122,6 +122,39 @@ describe("a recording gives what compiling anew gives, curves and derivatives", 
     const body =
       "  a: {kind: stirred, volume: v, to: {out: 0.5 * x, b: rest}, exchange: {c: q * exp(x)}}\n  b: {kind: tubular, volume: 20 L * sqrt(x), to: out}\n  c: {kind: stirred, volume: 30 L + v / 10}";
     expect(apart(networkOf(vessel(body, parameters)), trialWith(pulse))).toBeLessThan(1e-9);
+  });
+});
+
+describe("of a tracer that is lost and held back", () => {
+  const network = networkOf(
+    vessel(
+      "  a: {kind: tubular, volume: v, to: b}\n  b: {kind: stirred, repeat: 2, volume: 60 L, to: out}",
+      "parameters: {v: {value: 30 L, between: [1 L, 90 L]}, hold: {value: 1.4, between: [1, 3]}}\n",
+    ),
+  );
+  const values = { v: 0.03, hold: 1.4 };
+  const late = [...times.keys()].filter((k) => times[k] > 480);
+  test.each([
+    ["lost", "{loss: 0.05 1/min}"],
+    ["held back in the tube", "{retained: {a: hold}}"],
+    ["held back in one tank, and lost", "{retained: {b: hold}, loss: 2 %/min}"],
+  ])("%s: the curve of the compiled plant, and derivatives as its differences have them", (_, tracer) => {
+    const trial = trialWith(pulse, "", `tracer: ${tracer}\n`);
+    const model = networkModel(network);
+    model.keep?.([trial]);
+    const [played] = model.respond(trial, values, [{ time: times }]) ?? [];
+    const compiled = respond(network, trial, values);
+    const peak = Math.max(...compiled);
+    for (let i = 0; i < times.length; i++) expect(Math.abs(played[i] - compiled[i])).toBeLessThan(1e-10 * peak);
+    const directions = Object.keys(values).map((name) => ({ names: new Map([[name, 1]]) }));
+    const answer = model.slopes?.(trial, { values, shifted: new Set() }, [{ time: times }], directions);
+    for (const [d, [name, value]] of Object.entries(values).entries()) {
+      const slope = answer?.slopes[d];
+      if (!slope) throw new Error("no derivative");
+      const h = 1e-3 * value;
+      const moved = (k: number): Float64Array => respond(network, trial, { ...values, [name]: value + k * h });
+      expect(error(slope[0], moved, h, late), name).toBeLessThan(1e-7);
+    }
   });
 });
 
