@@ -99,6 +99,10 @@ function addSimulate(root: Command, { perform, inputs, io }: Stage): void {
     .option("--trial <file>", "what the probes of a trial would read")
     .option("--duty <file>", "the steady state of a duty, with its report")
     .option("--transient", "with --duty: follow it in time, from its `contents`, or through what changes in its feeds")
+    .option(
+      "--states <name=a..b>",
+      "with --duty: all steady states over a range of one input, and where they end; -o also writes .svg, .png",
+    )
     .option("--at <names>", "inner places to look at besides the outlets; repeatable", collectNames)
     .option("--set <name=value>", "another value of a parameter, constant or feed.flow; repeatable", collect)
     .option(

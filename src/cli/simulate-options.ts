@@ -7,6 +7,7 @@ export interface SimulateOptions extends TimeOptions {
   readonly trial?: string;
   readonly duty?: string;
   readonly transient?: true;
+  readonly states?: string;
   readonly at?: readonly string[];
   readonly follows?: string;
   readonly set?: readonly string[];

@@ -9,7 +9,10 @@ export async function simulate(file: string, options: SimulateOptions, context: 
   if (asked.length !== 1) {
     throw new UsageError("say what to simulate: one of --pulse FEED, --step FEED, --trial FILE and --duty FILE");
   }
-  if (options.output !== undefined && !/\.csv$/i.test(options.output)) {
+  if (options.states !== undefined && (asked[0] !== "duty" || options.transient || options.along !== undefined)) {
+    throw new UsageError("--states goes with --duty FILE, without --transient and --along: it follows steady states");
+  }
+  if (options.output !== undefined && options.states === undefined && !/\.csv$/i.test(options.output)) {
     throw new UsageError(`-o writes CSV: name a file that ends in .csv, not '${options.output}'`);
   }
   if (options.ages !== undefined) {
@@ -43,6 +46,8 @@ export async function simulate(file: string, options: SimulateOptions, context: 
     case "duty":
       if (options.transient)
         return (await import("./simulate-transient.js")).simulateTransient(network, options, context);
+      if (options.states !== undefined)
+        return (await import("./simulate-states.js")).simulateStates(network, options, options.states, context);
       return (await import("./simulate-duty.js")).simulateDuty(network, options, context);
     case "trial":
       return (await import("./simulate-trial.js")).simulateTrial(network, options, context);

@@ -34,3 +34,9 @@ export function bodyAt({ columns }: Plant, node: number, reactions: Reactions): 
   const block = columns.blockAt(node);
   return block && passOf(block.mixing, reactions, block.volume, block.pockets, inflow[node]);
 }
+
+/** A body whose contents feed back on one another: it may have several states by itself. */
+export function hasInside({ columns }: Plant, node: number): boolean {
+  const block = columns.blockAt(node);
+  return block !== undefined && (block.mixing.is === "dispersed" || block.pockets !== undefined);
+}

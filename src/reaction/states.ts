@@ -2,6 +2,7 @@ import { requireCarried } from "../compile/carried.js";
 import type { Plant } from "../compile/plant.js";
 import type { Chemistry } from "../model/chemistry.js";
 import type { Duty } from "../model/duty.js";
+import { hasInside } from "./bodies.js";
 import { type Conditions, conditionsOf, type DutySettings } from "./conditions.js";
 import type { Kinetics } from "./kinetics.js";
 import type { Mode } from "./stability.js";
@@ -91,12 +92,6 @@ function onward(plant: Plant, { heat }: Conditions, way: Way, group: Int32Array,
     own.take(group, state);
     return { walk: own, growth: [...growth, state.mode], reached: reached && state.reached };
   });
-}
-
-/** A body whose contents feed back on one another: it may have several states by itself. */
-function hasInside({ columns }: Plant, node: number): boolean {
-  const block = columns.blockAt(node);
-  return block !== undefined && (block.mixing.is === "dispersed" || block.pockets !== undefined);
 }
 
 /** True where no rate bends: there is one state then. */

@@ -1,6 +1,6 @@
 import { Part, type Plant } from "../compile/plant.js";
 import { type Adjacency, adjacency } from "../numerics/graph.js";
-import { bodyAt } from "./bodies.js";
+import { bodyAt, hasInside } from "./bodies.js";
 import { solveCircle } from "./circle.js";
 import type { Circle } from "./circle-start.js";
 import type { Conditions } from "./conditions.js";
@@ -10,6 +10,7 @@ import { type GroupBalance, groupBalance } from "./group.js";
 import { type GroupState, groupStates, settleGroup } from "./group-search.js";
 import type { NewtonResult } from "./newton.js";
 import { rangeOf } from "./range.js";
+import { type Mode, slowestMode } from "./stability.js";
 
 /** Up to here nodes that feed one another are solved by elimination, above it by iteration. */
 const mostEliminated = 200;
@@ -137,9 +138,7 @@ export class Walk {
   statesOf(group: Int32Array): GroupState[] | undefined {
     const { n, place } = this;
     const nodes = group.filter((node) => this.inflow[node] > 0);
-    const alone = nodes.length === 1 && !this.feedsItself(nodes[0]);
-    if (nodes.length === 0 || nodes.length * n > mostSearched) return undefined;
-    if (alone && this.plant.columns.part[nodes[0]] !== Part.Cell) return undefined;
+    if (!this.decides(group) || nodes.length * n > mostSearched) return undefined;
     for (let p = 0; p < nodes.length; p++) place[nodes[p]] = p;
     const outside = new Float64Array(nodes.length * n);
     for (let p = 0; p < nodes.length; p++) this.bring(nodes[p], outside, p * n);
@@ -158,6 +157,50 @@ export class Walk {
     for (const node of group) if (!(this.inflow[node] > 0)) this.y.fill(Number.NaN, node * n, (node + 1) * n);
     for (let p = 0; p < nodes.length; p++) this.y.set(y.subarray(p * n, p * n + n), nodes[p] * n);
     this.residual = Math.max(this.residual, residual);
+  }
+
+  /**
+   * The balances of all that have a say in which states there are, at once: everything down to the last cell or circle. The
+   * groups behind that follow.
+   */
+  whole(): { readonly balance: GroupBalance; readonly nodes: Int32Array; readonly behind: readonly Int32Array[] } {
+    const { n, place } = this;
+    const { groups } = this.plant;
+    const last = groups.findLastIndex((group) => this.decides(group));
+    const nodes = Int32Array.from(groups.slice(0, last + 1).flatMap((group) => [...group])).filter(
+      (node) => this.inflow[node] > 0,
+    );
+    for (let p = 0; p < nodes.length; p++) place[nodes[p]] = p;
+    const outside = new Float64Array(nodes.length * n);
+    for (let p = 0; p < nodes.length; p++) this.bring(nodes[p], outside, p * n);
+    const balance = this.balanceOf(nodes, outside);
+    for (let p = 0; p < nodes.length; p++) place[nodes[p]] = -1;
+    return { balance, nodes, behind: groups.slice(last + 1) };
+  }
+
+  /** A cell, or nodes that feed one another: what may have several states. */
+  private decides(group: Int32Array): boolean {
+    const nodes = group.filter((node) => this.inflow[node] > 0);
+    if (nodes.length === 0) return false;
+    return nodes.length > 1 || this.feedsItself(nodes[0]) || this.plant.columns.part[nodes[0]] === Part.Cell;
+  }
+
+  /** How a small disturbance of a group goes on, all nodes being in their states; undefined where it was not judged. */
+  modeOf(group: Int32Array): Mode | "settled" | undefined {
+    if (!this.decides(group)) {
+      const inside = [...group].some((node) => this.inflow[node] > 0 && hasInside(this.plant, node));
+      return inside ? undefined : "settled";
+    }
+    const { n, place } = this;
+    const nodes = group.filter((node) => this.inflow[node] > 0);
+    for (let p = 0; p < nodes.length; p++) place[nodes[p]] = p;
+    const outside = new Float64Array(nodes.length * n);
+    for (let p = 0; p < nodes.length; p++) this.bring(nodes[p], outside, p * n);
+    const balance = this.balanceOf(nodes, outside);
+    for (let p = 0; p < nodes.length; p++) place[nodes[p]] = -1;
+    const own = new Float64Array(nodes.length * n);
+    for (let p = 0; p < nodes.length; p++) own.set(this.y.subarray(nodes[p] * n, nodes[p] * n + n), p * n);
+    return slowestMode(balance, own);
   }
 
   /** A walk that has come as far as this one and goes on by itself. */

@@ -22,8 +22,8 @@ export interface Input {
 }
 
 /**
- * Every input: constants of the chemistry (`k1`, and `bulk.k1` where it holds there only), what feeds bring (`feed.A`,
- * `feed.temperature`), jackets (`bulk.jacket`, `bulk.conductance`), the temperature; then parameters and constants of the network and `feed.flow`. A name that both have is the chemistry's, as in `with:`.
+ * Every input: constants of the chemistry (`k1`, and `bulk.k1` where it holds there only), what feeds bring (`feed.A`), the
+ * temperature (with heat balances `feed.temperature`, `bulk.jacket`, `bulk.conductance`, `heat-capacity`); then parameters and constants of the network and `feed.flow`. A name that both have is the chemistry's, as in `with:`.
  */
 export function inputsOf(operation: Operation): Input[] {
   const { network, duty, values } = operation;
@@ -50,12 +50,15 @@ export function inputsOf(operation: Operation): Input[] {
   for (const [feed, { species }] of duty.feeds) {
     for (const [name, { value }] of species) add(`${feed}.${name}`, "duty", value, value.of([]));
   }
-  for (const [feed, { temperature }] of duty.feeds) {
-    if (temperature) add(`${feed}.temperature`, "duty", temperature, temperature.of([]));
-  }
-  for (const [place, { temperature, conductance }] of duty.heat?.jackets ?? []) {
-    add(`${place}.jacket`, "duty", temperature, temperature.of([]));
-    add(`${place}.conductance`, "duty", conductance, conductance.of([]));
+  if (duty.heat) {
+    for (const [feed, { temperature }] of duty.feeds) {
+      if (temperature) add(`${feed}.temperature`, "duty", temperature, temperature.of([]));
+    }
+    for (const [place, { temperature, conductance }] of duty.heat.jackets) {
+      add(`${place}.jacket`, "duty", temperature, temperature.of([]));
+      add(`${place}.conductance`, "duty", conductance, conductance.of([]));
+    }
+    if (chemistry?.heatCapacity) add("heat-capacity", "duty", chemistry.heatCapacity, chemistry.heatCapacity.of([]));
   }
   if (duty.temperature) add("temperature", "duty", duty.temperature, duty.temperature.of([]));
   for (const { name, slot, role, value, between, spacing } of network.names) {

@@ -141,3 +141,27 @@ test("--along writes the mixture along what it flows through, as numbers or as a
     (await backmix(["simulate", "tube.yaml", "--pulse", "feed", "--along", "a.csv"], { files: tube })).status,
   ).toBe(2);
 });
+
+test("--states: all steady states over a range of one input, where they end, and how far that is from now", async () => {
+  const args = ["simulate", "tank.yaml", "--duty", "duty.yaml", "--states", "feed.temperature=300 K..400 K"];
+  const { status, out, written } = await backmix([...args, "-o", "s.svg"], { files: warm });
+  expect(status).toBe(0);
+  expect(out).toMatch(/356\.8 K +ignites as it rises +\+6\.752 K/);
+  expect(out).toMatch(/nearest +feed\.temperature up to 356\.8 K: ignites as it rises/);
+  expect(out).toContain("do not use this for relief sizing or interlock");
+  expect(written.get("s.svg")).toContain("<svg");
+  const csv = await backmix([...args, "-o", "s.csv"], { files: warm });
+  const [header, ...rows] = (csv.written.get("s.csv") ?? "").trim().split("\n");
+  expect(header).toBe("branch,feed.temperature [K],stable,conversion of A [1],temperature at product [K]");
+  expect(rows.length).toBeGreaterThan(50);
+  const { document } = await json(args, { files: warm });
+  expect(document).toMatchObject({
+    ok: true,
+    statesOver: { name: "feed.temperature", next: { rising: { what: "ignites" }, falling: null } },
+  });
+  const wrong = await backmix(["simulate", "tank.yaml", "--duty", "duty.yaml", "--states", "feed.heat=1 K..2 K"], {
+    files: warm,
+  });
+  expect(wrong.status).toBe(2);
+  expect(wrong.err).toContain("--states: there is no 'feed.heat'");
+});
