@@ -36,6 +36,8 @@ export class Recorder {
    * is not, compiling tells what there is.
    */
   readonly positive = new Set<Slot>();
+  /** Inputs whose own value, by what the file says, moves with other inputs. */
+  readonly following = new Set<string>();
   /** Values of names where it was recorded, and their slots; both by the names' places. */
   private env: Float64Array = new Float64Array(0);
   private slots: readonly Slot[] = [];
@@ -106,6 +108,11 @@ export class Recorder {
       const n = bySlot.get(slot);
       if (!n) continue;
       const given = set.get(n.name);
+      const moves = (name: string): boolean => {
+        const used = network.names.find((m) => m.name === name);
+        return used !== undefined && slots[used.slot] !== undefined && this.moves(slots[used.slot]);
+      };
+      if (given !== undefined && n.value.uses.some(moves)) this.following.add(n.name);
       if (given === undefined && n.role === "inflow") throw new NotRecorded();
       slots[slot] = given ?? this.value(n.value);
     }

@@ -81,6 +81,7 @@ export function networkModel(network: Network): ForwardModel {
   };
   const replays = new Replays(network, plan);
   const noSeeds = new Float64Array(0);
+  const nothing: ReadonlySet<string> = new Set();
   /** By a recording; undefined where none holds. */
   const ask = <T>(trial: Trial, values: Settings, of: (replay: Replay, inputs: Float64Array) => T | undefined) => {
     for (const replay of replays.of(trial)) {
@@ -89,8 +90,15 @@ export function networkModel(network: Network): ForwardModel {
     }
     return undefined;
   };
-  const replayed = (trial: Trial, values: Settings, wanted: WantedTimes, directions: readonly Direction[]) =>
+  const replayed = (
+    trial: Trial,
+    values: Settings,
+    wanted: WantedTimes,
+    directions: readonly Direction[],
+    shifted: ReadonlySet<string> = nothing,
+  ) =>
     ask(trial, values, (replay, inputs) => {
+      if (replay.inputs.some((name) => shifted.has(name) && !replay.staysShifted(name))) return undefined;
       const seeds = directions.length === 0 ? noSeeds : seedsOf(replay.inputs, directions);
       return seeds && replay.run(inputs, wanted, seeds, directions.length);
     });
@@ -118,7 +126,7 @@ export function networkModel(network: Network): ForwardModel {
       }
     },
     slopes(trial, at, wanted, directions) {
-      const quick = at.shifted.size === 0 ? replayed(trial, at.values, wanted, directions) : undefined;
+      const quick = replayed(trial, at.values, wanted, directions, at.shifted);
       if (quick) return quick;
       const plant = plantFor(trial, at.values);
       if (!plant || !hasSlopes(plant, trial)) return undefined;

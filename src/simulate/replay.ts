@@ -45,6 +45,11 @@ export class Replay {
     return this.recorded.recorder.inputs;
   }
 
+  /** Does an input that is a name's value shifted stay where it is, whatever the other inputs do? */
+  staysShifted(name: string): boolean {
+    return !this.recorded.recorder.following.has(name);
+  }
+
   /**
    * @param inputs  SI
    * @param seeds   by input and direction, `directions` in a row for each input

@@ -158,6 +158,33 @@ describe("of a tracer that is lost and held back", () => {
   });
 });
 
+test("facts that are shifted: derivatives as compiled, whether or not they follow what is fitted", () => {
+  const network = networkOf(
+    vessel(
+      "  a: {kind: tubular, volume: v, to: b}\n  b: {kind: stirred, volume: total - v, to: out, exchange: {c: q}}\n  c: {kind: stirred, volume: 10 L}",
+      "constants: {total: 100 L ± 2 L, q: 0.02 * v / 1 min}\nparameters: {v: {value: 30 L, between: [1 L, 90 L]}}\n",
+    ),
+  );
+  const wanted = [{ time: times }];
+  const directions = [{ names: new Map([["v", 1]]) }, { names: new Map([["total", 1]]) }];
+  for (const shifts of [{ total: 0.102 }, { total: 0.102, q: 1.5e-5 }]) {
+    const values = { v: 0.03, ...shifts };
+    const at = { values, shifted: new Set(Object.keys(shifts)) };
+    const trial = trialWith(pulse);
+    const model = networkModel(network);
+    model.keep?.([trial]);
+    model.respond(trial, values, wanted);
+    const kept = model.slopes?.(trial, at, wanted, directions);
+    const compiled = networkModel(network).slopes?.(trial, at, wanted, directions);
+    directions.forEach((_, d) => {
+      const [a, b] = [kept?.slopes[d]?.[0], compiled?.slopes[d]?.[0]];
+      if (!a || !b) throw new Error("no derivative");
+      const peak = Math.max(...b.map(Math.abs));
+      for (let i = 0; i < a.length; i++) expect(Math.abs(a[i] - b[i])).toBeLessThan(1e-9 * peak);
+    });
+  }
+});
+
 test("a recording is the same to the last digit wherever it was made", () => {
   const network = networkOf(parametrised(randomNetwork(6)));
   const values = parametersOf(network);
