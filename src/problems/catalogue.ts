@@ -4,6 +4,7 @@ import { detectorEntries } from "./catalogue/detectors.js";
 import { flowEntries } from "./catalogue/flows.js";
 import { libraryEntries } from "./catalogue/library.js";
 import { nameEntries } from "./catalogue/names.js";
+import { rateLawEntries } from "./catalogue/rate-laws.js";
 import { reactingTrialEntries } from "./catalogue/reacting-trials.js";
 import { reuseEntries } from "./catalogue/reuse.js";
 import { runEntries } from "./catalogue/runs.js";
@@ -28,6 +29,7 @@ export const catalogueGroups = {
   "Trials and the vessel that was tested": vesselTrialEntries,
   "Trials of a reaction": reactingTrialEntries,
   "Chemistries and duties": chemistryEntries,
+  "Rate laws": rateLawEntries,
   "Fits: before they run, and what to know of their results": runEntries,
   Studies: studyEntries,
   "Tools for a library": libraryEntries,
@@ -47,6 +49,7 @@ export const catalogue = {
   ...vesselTrialEntries,
   ...reactingTrialEntries,
   ...chemistryEntries,
+  ...rateLawEntries,
   ...runEntries,
   ...studyEntries,
   ...libraryEntries,

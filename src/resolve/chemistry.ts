@@ -9,7 +9,9 @@ import { findBases } from "./bases.js";
 import { checkName } from "./check-name.js";
 import { type ChemicalConstants, resolveConstants } from "./chemical-constants.js";
 import { heatsHold, resolveMedium, withHeats } from "./heats.js";
+import { massKept } from "./mass-kept.js";
 import { explainRates } from "./rate-dimension.js";
+import { ratesHold } from "./rate-values.js";
 import { resolveReaction, type WrittenReaction } from "./reaction.js";
 import { aboveZero } from "./sign.js";
 import { bindValue, emptyScope, reportFault, resolveValue, type Scope } from "./value.js";
@@ -55,7 +57,7 @@ export function resolveChemistry(tree: MapNode, path: string, report: Report): C
     ...constants.constants.flatMap((c) => c.value.uses),
   ];
   const title = child(tree, "chemistry");
-  return {
+  const chemistry: Chemistry = {
     title: textOf(tree, "chemistry") ?? "",
     at: title?.at ?? tree.at,
     path,
@@ -69,6 +71,9 @@ export function resolveChemistry(tree: MapNode, path: string, report: Report): C
     reactions: written.map((w) => bindReaction(w, names, constants.constants, warm, (name) => scope.slot(name))),
     bases,
   };
+  massKept(chemistry, report);
+  const places = written.map((w) => w.rateNode.at);
+  return ratesHold(chemistry, places, report) ? chemistry : undefined;
 }
 
 function resolveSpecies(node: Tree | undefined, report: Report): Species[] {

@@ -11,6 +11,7 @@ import { resolveMixture } from "./course.js";
 import { feedTemperaturesUnused, heatFits, resolveHeat } from "./duty-heat.js";
 import { resolveLocal } from "./duty-local.js";
 import { massEquations, type SettledFeeds, settleFeeds, settleLimit } from "./feed-basis.js";
+import { neverStarting } from "./never-starts.js";
 import { resolveRegulated } from "./regulated.js";
 import { resolveReportLine } from "./report-line.js";
 import { aboveZero } from "./sign.js";
@@ -78,6 +79,12 @@ export function resolveDuty(
   if (chemistry && settled) massEquations(chemistry, settled, asked, tell);
   const lines = settled && asked.flatMap((line) => settleLimit(line, chemistry, species, settled, tell) ?? []);
   const { contents: held, ...fed } = settled ?? pure(feeds, contents);
+  if (chemistry && good && settled) {
+    const mixtures = [...settled.feeds.values(), ...held.values()];
+    const constants = new Map([...given.with].map(([name, { value }]) => [name, value]));
+    const everywhere = local.size === 0; // a constant that holds in one place only may be zero elsewhere
+    if (everywhere) neverStarting(chemistry, { at, mixtures, constants, temperature: temperature?.of([]) }, tell);
+  }
   const heldAt = child(tree, "contents")?.at;
   const duty: Duty = {
     title: textOf(tree, "duty") ?? "",

@@ -12,6 +12,7 @@ import { one, type Unit } from "../units/unit.js";
 import { concentrationBases } from "./bases.js";
 import { resolveFeeds } from "./duty.js";
 import { settleFeeds } from "./feed-basis.js";
+import { neverStarting } from "./never-starts.js";
 import { aboveZero } from "./sign.js";
 import type { TrialClock } from "./trial-clock.js";
 import { emptyScope, resolveTemperature, resolveValue } from "./value.js";
@@ -62,6 +63,10 @@ export function resolveReacting(
   const contents = resolveFeeds(child(tree, "contents"), chemistry, noFiles, report, "place");
   const settled = settleFeeds(chemistry, feeds, contents, report);
   if (!settled) return undefined;
+  const mixtures = [...settled.feeds.values(), ...settled.contents.values()];
+  // What the day set otherwise may start what the file's constants do not.
+  const brought = { at: node.at, mixtures, constants: new Map(), temperature: temperature?.of([]) };
+  if (!child(tree, "with")) neverStarting(chemistry, brought, report);
   const own = vessel && files.flask(vessel.path, vessel.at);
   return {
     chemistry,
