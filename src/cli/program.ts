@@ -103,6 +103,9 @@ function addSimulate(root: Command, { perform, inputs, io }: Stage): void {
       "--states <name=a..b>",
       "with --duty: all steady states over a range of one input, and where they end; -o also writes .svg, .png",
     )
+    .option("--funnel", "with --transient: how high the duty's upset may be for how long (--times) within its limit")
+    .option("--draws <n>", "with --transient: when to divert, from so many draws of all that has a `±`", whole(20))
+    .option("--delay <time>", "with --draws: how late an analyser tells")
     .option("--at <names>", "inner places to look at besides the outlets; repeatable", collectNames)
     .option("--set <name=value>", "another value of a parameter, constant or feed.flow; repeatable", collect)
     .option(

@@ -8,6 +8,9 @@ export interface SimulateOptions extends TimeOptions {
   readonly duty?: string;
   readonly transient?: true;
   readonly states?: string;
+  readonly funnel?: true;
+  readonly draws?: number;
+  readonly delay?: string;
   readonly at?: readonly string[];
   readonly follows?: string;
   readonly set?: readonly string[];

@@ -7,14 +7,20 @@ import { collector } from "../problems/report.js";
 import { networkSettings } from "../reaction/conditions.js";
 import { temperatureUnit } from "../reaction/figures.js";
 import { speciesUnits } from "../reaction/species-units.js";
-import { settlingTime } from "../simulate/tracer.js";
+import { plotTransient } from "../report/study/transient-figure.js";
+import { type DiversionWindow, diversionWindows } from "../study/diversion.js";
+import { drawsOf } from "../study/draws-of.js";
+import type { Operation } from "../study/operate.js";
+import { rowsFor } from "../study/sources.js";
 import { transientFigures } from "../transient/figures.js";
-import { lastChange } from "../transient/inputs.js";
+import { asksForTime, endOf } from "../transient/in-time.js";
 import { type Transient, transient } from "../transient/transient.js";
 import { formatQuantity } from "../units/format.js";
 import { inUnit } from "../units/unit.js";
 import type { Context } from "./context.js";
 import { columnsCsv } from "./csv.js";
+import { diversionJson, diversionText } from "./diversion-text.js";
+import { drawnAs } from "./drawn-as.js";
 import { transientJson } from "./json/transient.js";
 import { type Outcome, UsageError } from "./outcome.js";
 import { plantAt } from "./plant.js";
@@ -23,22 +29,25 @@ import type { SimulateOptions } from "./simulate-options.js";
 import { curvesOn } from "./text/plot.js";
 import { blocks } from "./text/table.js";
 import { transientText } from "./text/transient.js";
-import { type Clock, clockFrom } from "./times.js";
+import { type Clock, clockFrom, oneTime } from "./times.js";
 
 /** `simulate --duty --transient`: a duty in time. */
-export function simulateTransient(network: Network, options: SimulateOptions, { inputs, io }: Context): Outcome {
+export async function simulateTransient(
+  network: Network,
+  options: SimulateOptions,
+  { inputs, io }: Context,
+): Promise<Outcome> {
   const duty = inputs.document(options.duty ?? "", parseDuty);
   const { report, problems } = collector();
   checkDuty(network, duty, report, true);
   inputs.accept(problems);
   const plant = plantAt(network, { ...networkSettings(duty), ...settingsFrom(network, options.set) });
   for (const name of options.at ?? []) requirePlace(name, plant.exit, "--at");
+  if (options.funnel) return (await import("./simulate-funnel.js")).simulateFunnel(plant, duty, options, { io });
   const clock = clockFrom(options, network.units.time, () => {
     if (isClosed(network))
       throw new UsageError("a closed vessel's curve has no end: say how long with --until or --times");
-    return (
-      lastChange(duty) + Math.max(...plant.feeds.filter((f) => f.flow > 0).map((f) => settlingTime(plant, f.name)))
-    );
+    return endOf(plant, duty);
   });
   const places = network.compartments.map((c) => c.name).filter((name) => plant.exit.has(name));
   const run = transient(plant, duty.chemistry, duty, clock.si, {
@@ -46,8 +55,15 @@ export function simulateTransient(network: Network, options: SimulateOptions, { 
   });
   const figures = transientFigures(plant, duty, run);
   const { output } = options;
-  if (output !== undefined) io.write(output, curvesCsv(plant, duty, run, clock));
   const units = speciesUnits(network, duty, run.species);
+  const shown = { time: clock.unit, species: units };
+  if (output !== undefined) {
+    const made = /\.csv$/i.test(output)
+      ? curvesCsv(plant, duty, run, clock)
+      : await drawnAs(output, (drawn) => plotTransient(plant, duty, run, shown, drawn));
+    io.write(output, made);
+  }
+  const diverted = run.stopped ? undefined : windows(network, duty, options);
   const { stopped } = run;
   return {
     status: stopped ? 3 : 0,
@@ -64,12 +80,14 @@ export function simulateTransient(network: Network, options: SimulateOptions, { 
           })),
         ),
       ),
+      diverted ? diversionText(plant, diverted.found, diverted.delay, clock.unit) : "",
       output === undefined ? "" : `  curves: ${output}`,
     ),
     json: {
       ok: !stopped,
       duty: duty.title,
       ...transientJson(plant, duty, run, figures, clock),
+      ...(diverted ? { diversion: diversionJson(plant, diverted.found, clock.unit) } : {}),
       ...(output === undefined ? {} : { written: output }),
     },
     notes: stopped
@@ -81,6 +99,27 @@ export function simulateTransient(network: Network, options: SimulateOptions, { 
       : [],
   };
 }
+
+/** When to divert, from draws of all that has a `±`, where that is asked. */
+function windows(
+  network: Network,
+  duty: Duty,
+  { draws, delay, set }: SimulateOptions,
+): { found: DiversionWindow[]; delay: number } | undefined {
+  if (draws === undefined) {
+    if (delay !== undefined) throw new UsageError("--delay goes with --draws");
+    return undefined;
+  }
+  if (!asksForTime(duty))
+    throw new UsageError("--draws needs a limit, such as `report: [time A at product above 0.2 mol/L]`");
+  const operation: Operation = { network, duty, values: settingsFrom(network, set), kinetics: new Map() };
+  const { settings } = drawsOf(network, undefined, draws, seed);
+  const late = delay === undefined ? 0 : oneTime(delay, "--delay", '"30 s"').si;
+  return { found: diversionWindows(operation, rowsFor(operation, settings, seed), late), delay: late };
+}
+
+/** Of the draws. */
+const seed = 1;
 
 /** A row per place and time, a column per species. */
 function curvesCsv({ network }: Plant, duty: Duty, run: Transient, { shown, unit }: Clock): string {

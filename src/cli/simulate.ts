@@ -12,7 +12,10 @@ export async function simulate(file: string, options: SimulateOptions, context: 
   if (options.states !== undefined && (asked[0] !== "duty" || options.transient || options.along !== undefined)) {
     throw new UsageError("--states goes with --duty FILE, without --transient and --along: it follows steady states");
   }
-  if (options.output !== undefined && options.states === undefined && !/\.csv$/i.test(options.output)) {
+  if (options.transient && options.output !== undefined) {
+    if (!/\.(csv|svg|png)$/i.test(options.output))
+      throw new UsageError(`-o writes CSV, SVG or PNG here: name a file with that ending, not '${options.output}'`);
+  } else if (options.output !== undefined && options.states === undefined && !/\.csv$/i.test(options.output)) {
     throw new UsageError(`-o writes CSV: name a file that ends in .csv, not '${options.output}'`);
   }
   if (options.ages !== undefined) {
@@ -25,6 +28,9 @@ export async function simulate(file: string, options: SimulateOptions, context: 
   }
   if (options.along !== undefined && (asked[0] !== "duty" || options.transient)) {
     throw new UsageError("--along goes with --duty FILE, without --transient: it is about what has settled");
+  }
+  for (const key of ["funnel", "draws", "delay"] as const) {
+    if (options[key] !== undefined && !options.transient) throw new UsageError(`--${key} goes with --transient`);
   }
   if (options.transient && asked[0] !== "duty") throw new UsageError("--transient goes with --duty FILE");
   if (asked[0] === "duty" && options.transient) {

@@ -113,8 +113,11 @@ export function dutyInputs(chemistry: Chemistry | undefined, duty: Duty): DutyIn
   }
   for (const [feed, { value }] of duty.flows) add(`${feed}.flow`, value.of([]), value.sd?.([]));
   for (const [name, { value }] of duty.settings) add(name, value.of([]), value.sd?.([]));
-  for (const [feed, { species }] of duty.feeds) {
+  for (const [feed, { species, courses }] of duty.feeds) {
     for (const [name, { value }] of species) add(`${feed}.${name}`, value.of([]), value.sd?.([]));
+    for (const [name, course] of courses ?? []) {
+      if (course.is === "upset") add(`${feed}.${name}.to`, course.to.of([]), course.to.sd?.([]));
+    }
   }
   for (const [place, { constants }] of duty.local ?? []) {
     for (const [name, { value }] of constants) add(`${place}.${name}`, value.of([]), value.sd?.([]));

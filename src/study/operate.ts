@@ -6,6 +6,7 @@ import type { Network } from "../model/network.js";
 import { constantsOf, type DutySettings, networkSettings } from "../reaction/conditions.js";
 import { type Figure, figuresOf } from "../reaction/figures.js";
 import { steadyState } from "../reaction/steady.js";
+import { withTimes } from "../transient/in-time.js";
 import { sameSide } from "./draws.js";
 
 /** A duty in a network: what its reported figures are a function of. */
@@ -53,10 +54,10 @@ export function operate(operation: Operation, row: Row = noRow): Operated {
   const made = plantOf(operation, row);
   if (made.plant === undefined) return { cannot: made.cannot };
   const { duty } = operation;
-  const settings = { ...row.duty, ...constantsOff(duty, row) };
+  const settings = dutySettings(duty, row);
   const state = steadyState(made.plant, duty.chemistry, duty, settings);
   if (!state.converged) return { cannot: "the steady state did not converge" };
-  return { figures: figuresOf(made.plant, duty, state, settings) };
+  return { figures: withTimes(made.plant, duty, figuresOf(made.plant, duty, state, settings), settings) };
 }
 
 /** Values of figures by number; undefined where there are none. */
@@ -78,6 +79,9 @@ function withOff(network: Network, settings: Settings, row: Row): Settings {
   }
   return whole;
 }
+
+/** What a row sets in a duty. */
+export const dutySettings = (duty: Duty, row: Row): DutySettings => ({ ...row.duty, ...constantsOff(duty, row) });
 
 /** The same for constants of the chemistry. */
 function constantsOff(duty: Duty, row: Row): DutySettings {

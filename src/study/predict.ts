@@ -1,5 +1,6 @@
 import type { Duty } from "../model/duty.js";
 import { predict } from "../reaction/prediction.js";
+import { withTimes } from "../transient/in-time.js";
 import { betterIs } from "./direction.js";
 import { plantOf } from "./operate.js";
 import type { Bounds, Prediction, Ranked } from "./result.js";
@@ -12,7 +13,8 @@ export function predictDuty(ranked: Ranked, { operation, rows, values }: Sample)
   const { duty } = operation;
   const { plant } = plantOf(operation);
   if (!plant) return [];
-  const { state, figures, bounds, premises } = predict(plant, duty);
+  const { state, figures: steady, bounds, premises } = predict(plant, duty);
+  const figures = withTimes(plant, duty, steady);
   const spreads = spreadsOf(operation, ranked.fit, rows, values);
   return figures.map((f, k): Prediction => {
     const b = bounds[k];

@@ -1,0 +1,41 @@
+import type { Plant } from "../compile/plant.js";
+import type { Duty } from "../model/duty.js";
+import type { DutySettings } from "../reaction/conditions.js";
+import type { Figure } from "../reaction/figures.js";
+import { settlingTime } from "../simulate/tracer.js";
+import { transientFigures } from "./figures.js";
+import { lastChange } from "./inputs.js";
+import { type Transient, transient } from "./transient.js";
+
+/** Fine enough for draws: far finer than what is drawn. */
+const roughly = { relative: 1e-6, absolute: 1e-9, balance: false };
+
+/** s: when a duty is over that starts at 0: after the last change, when a tracer put in then would have left (to 0.1 %). */
+export function endOf(plant: Plant, duty: Duty): number {
+  const fed = plant.feeds.filter((f) => f.flow > 0).map((f) => settlingTime(plant, f.name));
+  return lastChange(duty) + Math.max(0, ...fed);
+}
+
+/** True where a duty reports something that only time shows. */
+export const asksForTime = (duty: Duty): boolean => duty.report.some((line) => line.what === "time-beyond");
+
+/** A duty in time up to its end, as coarsely as many runs in a row allow; `look` at the places of its times beyond limits. */
+export function roughRun(plant: Plant, duty: Duty, settings: DutySettings = {}): Transient {
+  const at = duty.report.flatMap((line) => (line.what === "time-beyond" && line.at !== undefined ? [line.at] : []));
+  return transient(plant, duty.chemistry, duty, [0, endOf(plant, duty)], { ...roughly, settings, at });
+}
+
+/**
+ * Figures of a steady state with those that only time shows put in: what is above or below a limit for how long, from the
+ * start of the duty until it is over.
+ */
+export function withTimes(
+  plant: Plant,
+  duty: Duty,
+  figures: readonly Figure[],
+  settings: DutySettings = {},
+): readonly Figure[] {
+  if (!asksForTime(duty)) return figures;
+  const times = transientFigures(plant, duty, roughRun(plant, duty, settings), settings);
+  return figures.map((f, k) => (duty.report[k]?.what === "time-beyond" ? times[k] : f));
+}
