@@ -45,6 +45,10 @@ export function checkDuty(network: Network, duty: Duty, report: Report, inTime =
   const places = [...bodies, ...network.groups.map((g) => g.name), ...network.compartments.flatMap(membersOf)];
   const held = [...(duty.local ?? [])].map(([name, { at }]) => ({ key: "local", name, at }));
   const jackets = [...(duty.heat?.jackets ?? [])].map(([name, { at }]) => ({ key: "heat", name, at }));
+  for (const { feed, outlet, at } of duty.heat?.exchangers ?? []) {
+    look(feed, at, "feed", feeds);
+    look(outlet, at, "outlet", outlets);
+  }
   for (const { key, name, at } of [...held, ...jackets]) {
     if (look(name, at, "compartment", places)) somethingFlows(network, key, name, at, report);
   }

@@ -77,6 +77,17 @@ export interface HeatDuty {
   readonly at: Span;
   /** By the name of a compartment, a member of one or a part. */
   readonly jackets: ReadonlyMap<string, Jacket>;
+  /** Feeds that what leaves warms or cools. */
+  readonly exchangers: readonly Exchanger[];
+}
+
+/** Heat that passes between a feed, before it enters, and what leaves at an outlet, in counterflow. */
+export interface Exchanger {
+  readonly at: Span;
+  readonly feed: string;
+  readonly outlet: string;
+  /** Share of the largest difference that could be made; or coefficient times area, W/K. */
+  readonly size: { readonly is: "effectiveness" | "conductance"; readonly value: Value };
 }
 
 export interface Jacket {

@@ -216,7 +216,7 @@ class Vessel {
       const settled = walk.fork();
       settled.take(nodes, { y: own, residual: 0 });
       for (const group of behind) settled.pass(group);
-      const mode = turn ? undefined : this.modeAt(plant, settled);
+      const mode = turn ? undefined : this.modeAt(settled);
       const state = summary(plant, conditions, settled);
       const warmth = state.temperatures && nodes.reduce((sum, k) => sum + (state.temperatures?.[k] ?? 0), 0);
       return [{ at: this.value(p), state, stable: mode && mode.growth < 0, mode, turn, warmth }];
@@ -224,7 +224,8 @@ class Vessel {
   }
 
   /** The mode of all groups that grows fastest; undefined where one was not judged and none grows. */
-  private modeAt({ groups }: Plant, settled: Walk): Mode | undefined {
+  private modeAt(settled: Walk): Mode | undefined {
+    const { groups } = settled;
     if (groups.some((g) => g.length * (this.scale?.length ?? 1) > mostJudged)) return undefined;
     const modes = groups.map((group) => settled.modeOf(group)).filter((m) => m !== "settled");
     const known = modes.filter((m) => m !== undefined);

@@ -3,6 +3,7 @@ import type { Chemistry } from "../model/chemistry.js";
 import type { Duty } from "../model/duty.js";
 import { type Dimension, dimensions } from "../units/dimension.js";
 import { constantsOf, type DutySettings } from "./constants.js";
+import { exchangersOf, type FeedExchanger } from "./exchangers.js";
 import { behindWall, type Wall, wallsOf } from "./jacket.js";
 import { bindKinetics, type Reactions } from "./kinetics.js";
 import { placesByNode } from "./places.js";
@@ -30,6 +31,7 @@ export interface Conditions {
     /** J/(m3 K). */
     readonly capacity: number;
     wallAt(node: number): Wall | undefined;
+    readonly exchangers: readonly FeedExchanger[];
   };
   /** What one unit of each reaction makes, anywhere in the plant, scaled: what none of them changes only mixes. */
   readonly numbers: readonly Float64Array[];
@@ -90,7 +92,9 @@ export function conditionsOf(
     reactionsAt: (node) => own.get(node) ?? reactions,
     varied: own.size > 0,
     numbers: [...new Set([reactions, ...own.values()])].flatMap(({ cell }) => cell.numbers),
-    ...(heat ? { heat: { capacity: heat.capacity, wallAt } } : {}),
+    ...(heat
+      ? { heat: { capacity: heat.capacity, wallAt, exchangers: exchangersOf(plant, duty, heat.capacity) } }
+      : {}),
   };
 }
 

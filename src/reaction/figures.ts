@@ -38,7 +38,11 @@ export function figuresOf(plant: Plant, duty: Duty, state: SteadyState, settings
     if (line.what === "temperature") {
       const node = plant.exit.get(line.at ?? "");
       const held = settings.temperature ?? duty.temperature?.of([]);
-      const value = held ?? (node === undefined ? undefined : state.temperatures?.[node]) ?? Number.NaN;
+      const value =
+        held ??
+        state.outlets.find((o) => o.name === line.at)?.temperature ??
+        (node === undefined ? undefined : state.temperatures?.[node]) ??
+        Number.NaN;
       return figure(line, value, temperatureUnit(duty));
     }
     return speciesFigure(duty, state.species, line, streamsFor(plant, state, line), settings);

@@ -66,18 +66,30 @@ function sizeOf(y: Float64Array, n: number, thermal: boolean): number {
   return sum;
 }
 
-/** Newton's method from the unreacted mixture, by way of time where it has far to go. */
-export function settleGroup(balance: GroupBalance, y: Float64Array, byTime: boolean): NewtonResult {
-  const start = y.slice();
+/**
+ * Newton's method from the unreacted mixture, by way of time where it has far to go; where neither gets there, from the starts
+ * of a search.
+ */
+export function settleGroup(balance: GroupBalance, y: Float64Array, byTime: boolean, range: () => Range): NewtonResult {
+  const mixture = y.slice();
   const follow = byTime && balance.onlyCells;
   if (follow) runInto(balance, y);
   const result = solveNewton(balance, y);
-  if (result.converged || follow || !balance.onlyCells || balance.count > mostFollowed) return result;
-  const again = start;
-  runInto(balance, again);
-  const second = solveNewton(balance, again);
-  if (second.converged) y.set(again);
-  return second.converged ? second : result;
+  if (result.converged || balance.count > mostFollowed) return result;
+  if (balance.onlyCells && !follow) {
+    const again = mixture.slice();
+    runInto(balance, again);
+    const second = solveNewton(balance, again);
+    if (second.converged) y.set(again);
+    if (second.converged) return second;
+  }
+  for (const start of startsFor(balance, range())) {
+    const third = solveNewtonFrom(balance, start);
+    if (!third.converged || !start.every(Number.isFinite)) continue;
+    y.set(start);
+    return third;
+  }
+  return result;
 }
 
 function* startsFor(balance: GroupBalance, { cell, temperatures: between }: Range): Generator<Float64Array> {

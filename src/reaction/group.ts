@@ -8,6 +8,8 @@ import type { BlockSystem } from "./newton.js";
 interface Inlet {
   readonly from: number;
   readonly share: number;
+  /** An exchanger brings one component alone. */
+  readonly only?: number;
 }
 
 /**
@@ -53,13 +55,20 @@ export function groupBalance(
 
   const enter = (y: Float64Array, k: number): void => {
     for (let i = 0; i < n; i++) mix[i] = outside[k * n + i];
-    for (const { from, share } of inlets[k]) for (let i = 0; i < n; i++) mix[i] += share * y[from * n + i];
+    for (const { from, share, only } of inlets[k]) {
+      if (only === undefined) for (let i = 0; i < n; i++) mix[i] += share * y[from * n + i];
+      else mix[only] += share * y[from * n + only];
+    }
   };
 
   /** Adds share * scale * through to the block where node k sees node j: through undefined means the identity. */
   const see = (m: BlockMatrix, k: number, through?: Float64Array): void => {
-    for (const { from, share } of inlets[k]) {
+    for (const { from, share, only } of inlets[k]) {
       const b = block(m, k, from);
+      if (only !== undefined) {
+        for (let i = 0; i < n; i++) b[i * n + only] += share * (through ? through[i * n + only] : i === only ? 1 : 0);
+        continue;
+      }
       if (through) for (let e = 0; e < n * n; e++) b[e] += share * through[e];
       else for (let i = 0; i < n; i++) b[i * n + i] += share;
     }
@@ -74,7 +83,8 @@ export function groupBalance(
   let [held, entering] = [0, 0];
   for (let k = 0; k < count; k++) {
     held += tau[k] * inflow[k];
-    entering += inflow[k] * (1 - inlets[k].reduce((sum, { share }) => sum + share, 0));
+    entering +=
+      inflow[k] * (1 - inlets[k].reduce((sum, { share, only }) => (only === undefined ? sum + share : sum), 0));
   }
   return {
     count,

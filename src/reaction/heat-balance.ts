@@ -10,6 +10,8 @@ export interface HeatBalance {
   readonly released: number;
   /** What came in through walls, by place; negative where it went out. */
   readonly walls: readonly { readonly place: string; readonly gained: number }[];
+  /** What passes from outlets to feeds through exchangers, which stays in the plant; negative where it cools the feed. */
+  readonly exchanged: readonly { readonly feed: string; readonly outlet: string; readonly passed: number }[];
   /** What outlets carry away beyond what feeds bring. */
   readonly carried: number;
   /** What of it does not close, over the largest of them, or over what warms all that is fed by 1 K where that is more. */
@@ -35,9 +37,15 @@ export function heatBalance(
   const walls = gains(plant, conditions, settled);
   const gained = walls.reduce((sum, w) => sum + w.gained, 0);
   const released = capacity * warmed - gained;
+  const exchanged = heat.exchangers.map(({ feed, outlet, gain }) => {
+    const hot = settled.y[plant.outlets[outlet].node * conditions.size + conditions.size - 1];
+    const difference = hot * conditions.scale[conditions.size - 1] - (feeds[feed].temperature ?? Number.NaN);
+    const passed = capacity * feeds[feed].flow * gain * difference;
+    return { feed: feeds[feed].name, outlet: outlets[outlet].name, passed };
+  });
   const oneKelvin = capacity * feeds.reduce((sum, f) => sum + Math.max(f.flow, 0), 0);
   const size = Math.max(...[released, gained, carried, oneKelvin].map(Math.abs));
-  return { released, walls, carried, closure: (released + gained - carried) / size };
+  return { released, walls, exchanged, carried, closure: (released + gained - carried) / size };
 }
 
 /** What comes in through the wall of each place. */

@@ -39,6 +39,10 @@ export function rangeOf(
     if (rise > 0) up += rise;
     else down += rise;
   });
+  // What leaves warms the feed: a rise then counts several times.
+  const back = Math.min(0.95, Math.max(0, ...heat.exchangers.map((e) => e.gain)));
+  up /= 1 - back;
+  down /= 1 - back;
   const [low, high] = [Math.min(...levels), Math.max(...levels)];
   return { cell, temperatures: [Math.max(low + down, low / 2), Math.min(high + up, 20 * high)] };
 }

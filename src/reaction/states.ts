@@ -50,8 +50,9 @@ export function steadyStates(
   const conditions = conditionsOf(plant, chemistry, duty, settings);
   if (isLinear(conditions)) return { states: [], left: [] };
   const left = new Set<string>();
-  let walks: Way[] = [{ walk: new Walk(plant, conditions, undefined), growth: [], reached: true }];
-  for (const group of plant.groups) {
+  const start = new Walk(plant, conditions, undefined);
+  let walks: Way[] = [{ walk: start, growth: [], reached: true }];
+  for (const group of start.groups) {
     walks = walks.flatMap((way) => onward(plant, conditions, way, group, left));
     if (walks.length > mostStates) {
       left.add(`more than ${mostStates} states`);

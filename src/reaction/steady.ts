@@ -37,6 +37,6 @@ export function steadyState(
   requireCarried(plant, "reaction");
   const conditions = conditionsOf(plant, chemistry, duty, settings);
   const walk = new Walk(plant, conditions, progress);
-  for (const group of plant.groups) walk.pass(group);
+  for (const group of walk.groups) walk.pass(group);
   return summary(plant, conditions, walk);
 }

@@ -1,6 +1,7 @@
 import { Part, type Plant } from "../compile/plant.js";
 import type { Conditions } from "./conditions.js";
 import { conservedBy, imbalance } from "./conserved.js";
+import type { FeedExchanger } from "./exchangers.js";
 import { type HeatBalance, heatBalance } from "./heat-balance.js";
 import type { Port, Settled } from "./settled.js";
 
@@ -52,9 +53,12 @@ export function summary(plant: Plant, conditions: Conditions, walk: Settled): St
     temperature,
   });
   const inPorts = plant.feeds.map((feed, k) => port(feed.name, feed.flow, feeds[k].slice(0, n), heat && feeds[k][n]));
-  const outPorts = plant.outlets.map(({ name, flow, node }) =>
-    port(name, flow, concentrations.slice(node * n, node * n + n), temperatures?.[node]),
-  );
+  const outPorts = plant.outlets.map(({ name, flow, node }, k) => {
+    const exchanger = heat?.exchangers.find((e) => e.outlet === k);
+    const inside = temperatures?.[node];
+    const given = exchanger && inside !== undefined ? gives(plant, conditions, exchanger, inside) / flow : 0;
+    return port(name, flow, concentrations.slice(node * n, node * n + n), inside && inside - given);
+  });
   const carried = (ports: readonly Port[]): Float64Array =>
     sum((total) => {
       for (const p of ports) if (p.flow > 0) for (let i = 0; i < n; i++) total[i] += p.flow * p.concentrations[i];
@@ -90,6 +94,10 @@ export function summary(plant: Plant, conditions: Conditions, walk: Settled): St
     ),
   };
 }
+
+/** What an outlet gives to a feed through an exchanger, K m3/s. */
+const gives = (plant: Plant, { feeds, species }: Conditions, { feed, gain }: FeedExchanger, from: number): number =>
+  plant.feeds[feed].flow * gain * (from - feeds[feed][species.length]);
 
 /** Adds volume x rate of every cell, and what each body changed between its ends. Scaled. */
 function addMade(

@@ -1,5 +1,5 @@
 import { Part, type Plant } from "../compile/plant.js";
-import { type Adjacency, adjacency } from "../numerics/graph.js";
+import { type Adjacency, adjacency, stronglyConnected } from "../numerics/graph.js";
 import { bodyAt, hasInside } from "./bodies.js";
 import { solveCircle } from "./circle.js";
 import type { Circle } from "./circle-start.js";
@@ -28,6 +28,16 @@ export interface SteadyProgress {
   readonly missing: number;
 }
 
+/** The links of a plant and some more. */
+const withLinks = (
+  { columns, from, to }: Plant,
+  more: readonly { readonly node: number; readonly from: number }[],
+): { size: number; from: Int32Array; to: Int32Array } => ({
+  size: columns.size,
+  from: Int32Array.of(...from, ...more.map((m) => m.from)),
+  to: Int32Array.of(...to, ...more.map((m) => m.node)),
+});
+
 /** A steady state as far as it has come: filled group by group, downstream. Scaled concentrations, node by node. */
 export class Walk {
   readonly y: Float64Array;
@@ -40,7 +50,11 @@ export class Walk {
   /** Largest imbalance so far, and where. */
   residual = 0;
   worst: { node: number; species: number } | undefined;
+  /** Groups of nodes that feed one another, also with heat, in flow order. */
+  readonly groups: readonly Int32Array[];
   private readonly n: number;
+  /** What outlets bring to feeds through exchangers: only the temperature, by as much as a flow of m3/s would. */
+  private readonly warmed: readonly { readonly node: number; readonly from: number; readonly flow: number }[];
   /** Place of a node in the group at hand, -1 outside it. */
   private readonly place: Int32Array;
 
@@ -63,6 +77,13 @@ export class Walk {
         this.fed[feed.node * n + i] += (feed.flow * conditions.feeds[k][i]) / conditions.scale[i];
       }
     });
+    const exchangers = conditions.heat?.exchangers ?? [];
+    this.warmed = exchangers.map(({ feed, outlet, gain }) => {
+      const { node, flow } = feeds[feed];
+      this.fed[node * n + n - 1] -= (gain * flow * conditions.feeds[feed][n - 1]) / conditions.scale[n - 1];
+      return { node, from: plant.outlets[outlet].node, flow: gain * flow };
+    });
+    this.groups = this.warmed.length === 0 ? plant.groups : stronglyConnected(withLinks(plant, this.warmed));
   }
 
   /** Solves one group; everything upstream of it is known. */
@@ -96,7 +117,9 @@ export class Walk {
     for (let p = 0; p < nodes.length; p++) place[nodes[p]] = p;
     const outside = new Float64Array(nodes.length * n);
     for (let p = 0; p < nodes.length; p++) this.bring(nodes[p], outside, p * n);
-    let solved = nodes.length > mostEliminated ? this.iterate(nodes, outside) : undefined;
+    // Iteration knows nothing of what an exchanger brings.
+    const large = nodes.length > mostEliminated && this.warmed.length === 0;
+    let solved = large ? this.iterate(nodes, outside) : undefined;
     if (!solved?.result.converged && nodes.length <= mostTried) solved = this.eliminate(nodes, outside);
     for (let p = 0; p < nodes.length; p++) {
       place[nodes[p]] = -1;
@@ -115,17 +138,25 @@ export class Walk {
     const y = balance.mixed() ?? outside.slice();
     // With heat there may be several states: the one is wanted that a vessel filled with what is fed runs into.
     const byTime = this.conditions.heat !== undefined && y.length <= mostFollowed;
-    return { y, result: settleGroup(balance, y, byTime) };
+    return { y, result: settleGroup(balance, y, byTime, () => rangeOf(this.conditions, nodes, balance, outside)) };
   }
 
   private balanceOf(nodes: Int32Array, outside: Float64Array): GroupBalance {
     const { plant, inflow, place } = this;
     const { start, edges } = this.into;
     const inlets = Array.from(nodes, (node) =>
-      Array.from(edges.subarray(start[node], start[node + 1])).flatMap((link) => {
-        const from = place[plant.from[link]];
-        return from < 0 || !(plant.flow[link] > 0) ? [] : [{ from, share: plant.flow[link] / inflow[node] }];
-      }),
+      Array.from(edges.subarray(start[node], start[node + 1]))
+        .flatMap((link) => {
+          const from = place[plant.from[link]];
+          return from < 0 || !(plant.flow[link] > 0) ? [] : [{ from, share: plant.flow[link] / inflow[node] }];
+        })
+        .concat(
+          this.warmed.flatMap(({ node: to, from, flow }) =>
+            to === node && place[from] >= 0
+              ? [{ from: place[from], share: flow / inflow[node], only: this.n - 1 }]
+              : [],
+          ),
+        ),
     );
     const inflows = Float64Array.from(nodes, (node) => inflow[node]);
     return groupBalance(plant, nodes, outside, inlets, inflows, this.conditions);
@@ -144,8 +175,9 @@ export class Walk {
     for (let p = 0; p < nodes.length; p++) this.bring(nodes[p], outside, p * n);
     const balance = this.balanceOf(nodes, outside);
     const first = balance.mixed() ?? outside.slice();
-    const result = settleGroup(balance, first, true);
-    const states = groupStates(balance, rangeOf(this.conditions, nodes, balance, outside), first, result);
+    const range = rangeOf(this.conditions, nodes, balance, outside);
+    const result = settleGroup(balance, first, true, () => range);
+    const states = groupStates(balance, range, first, result);
     for (let p = 0; p < nodes.length; p++) place[nodes[p]] = -1;
     return states;
   }
@@ -165,7 +197,7 @@ export class Walk {
    */
   whole(): { readonly balance: GroupBalance; readonly nodes: Int32Array; readonly behind: readonly Int32Array[] } {
     const { n, place } = this;
-    const { groups } = this.plant;
+    const { groups } = this;
     const last = groups.findLastIndex((group) => this.decides(group));
     const nodes = Int32Array.from(groups.slice(0, last + 1).flatMap((group) => [...group])).filter(
       (node) => this.inflow[node] > 0,
@@ -269,6 +301,9 @@ export class Walk {
       const flow = plant.flow[edges[e]];
       if (place[from] >= 0 || !(flow > 0)) continue;
       for (let i = 0; i < n; i++) mix[at + i] += flow * this.y[from * n + i];
+    }
+    for (const { node: to, from, flow } of this.warmed) {
+      if (to === node && place[from] < 0) mix[at + n - 1] += flow * this.y[from * n + n - 1];
     }
     for (let i = 0; i < n; i++) mix[at + i] /= inflow[node];
   }

@@ -1,15 +1,17 @@
 import type { Chemistry } from "../model/chemistry.js";
-import type { Duty, HeatDuty, Jacket } from "../model/duty.js";
+import type { Duty, Exchanger, HeatDuty, Jacket } from "../model/duty.js";
 import type { Report } from "../problems/report.js";
-import { child, entriesOf, type Tree } from "../read/tree.js";
+import { child, entriesOf, itemsOf, type Tree, textOf } from "../read/tree.js";
 import type { Span } from "../text/source.js";
 import { dimensions } from "../units/dimension.js";
 import { aboveZero } from "./sign.js";
 import { emptyScope, resolveTemperature, resolveValue } from "./value.js";
 
 /** `adiabatic`, or jackets by place. Undefined once a problem is reported. */
-export function resolveHeat(node: Tree, report: Report): HeatDuty | undefined {
+export function resolveHeat(node: Tree, exchange: Tree | undefined, report: Report): HeatDuty | undefined {
   const entries = entriesOf(node);
+  const items = itemsOf(exchange);
+  const exchangers = items.flatMap((item) => resolveExchanger(item, report) ?? []);
   const jackets = entries.flatMap(({ key, value }): [string, Jacket][] => {
     const temperature = resolveTemperature(child(value, "jacket"), emptyScope, report);
     const conductance = resolveValue(child(value, "conductance"), dimensions["heat conductance"], emptyScope, report);
@@ -17,7 +19,29 @@ export function resolveHeat(node: Tree, report: Report): HeatDuty | undefined {
     if (!aboveZero(`the conductance of '${key.text}'`, conductance, true, report)) return [];
     return temperature && conductance ? [[key.text, { at: key.at, temperature, conductance }]] : [];
   });
-  return jackets.length === entries.length ? { at: node.at, jackets: new Map(jackets) } : undefined;
+  if (jackets.length < entries.length || exchangers.length < items.length) return undefined;
+  for (const side of ["feed", "outlet"] as const) {
+    exchangers.forEach((e, k) => {
+      if (exchangers.some((other, j) => j < k && other[side] === e[side])) {
+        report("exchanger-twice", e.at, { side, name: e[side] });
+      }
+    });
+  }
+  return { at: node.at, jackets: new Map(jackets), exchangers };
+}
+
+function resolveExchanger(node: Tree, report: Report): Exchanger | undefined {
+  const [feed, outlet] = [textOf(node, "warms"), textOf(node, "from")];
+  const shareNode = child(node, "effectiveness");
+  const wanted = shareNode ? dimensions.ratio : dimensions["heat conductance"];
+  const value = resolveValue(shareNode ?? child(node, "conductance"), wanted, emptyScope, report);
+  if (!value || feed === undefined || outlet === undefined) return undefined;
+  if (!aboveZero(`the exchanger of '${feed}'`, value, true, report)) return undefined;
+  if (shareNode && value.of([]) > 1) {
+    report("effectiveness-range", shareNode.at, {});
+    return undefined;
+  }
+  return { at: node.at, feed, outlet, size: { is: shareNode ? "effectiveness" : "conductance", value } };
 }
 
 /** Is there all that heat balances need: a heat capacity, a temperature for each feed, constants that can follow? */

@@ -63,7 +63,7 @@ export function resolveDuty(
   );
   const regulated = resolveRegulated(child(tree, "regulated"), tell);
   const heatNode = child(tree, "heat");
-  const heat = heatNode && resolveHeat(heatNode, tell);
+  const heat = heatNode && resolveHeat(heatNode, child(tree, "heat-exchange"), tell);
   if (heatNode && temperatureNode) tell("temperature-and-heat", heatNode.at, {});
   else if (heatNode) heatFits(heatNode.at, chemistry, { ...given, local, feeds }, tell);
   else feedTemperaturesUnused(feeds, tell);

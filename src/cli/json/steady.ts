@@ -54,9 +54,12 @@ export function steadyJson(plant: Plant, duty: Duty, prediction: Prediction): Re
 }
 
 /** Where the heat goes. */
-const heatJson = ({ released, walls, carried, closure }: HeatBalance): Record<string, unknown> => ({
+const heatJson = ({ released, walls, exchanged, carried, closure }: HeatBalance): Record<string, unknown> => ({
   released: quantity(released, kilowatt),
   walls: Object.fromEntries(walls.map(({ place, gained }) => [place, quantity(gained, kilowatt)])),
+  ...(exchanged.length > 0
+    ? { exchanged: exchanged.map(({ feed, outlet, passed }) => ({ feed, outlet, passed: quantity(passed, kilowatt) })) }
+    : {}),
   carried: quantity(carried, kilowatt),
   closure: finite(closure),
 });

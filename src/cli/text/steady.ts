@@ -68,7 +68,7 @@ export function steadyText(plant: Plant, duty: Duty, prediction: Prediction): st
 }
 
 /** Where the heat goes, in words. */
-function heatLines({ released, walls, carried, closure }: HeatBalance): (readonly [string, string])[] {
+function heatLines({ released, walls, exchanged, carried, closure }: HeatBalance): (readonly [string, string])[] {
   const kW = (watt: number): string => formatQuantity(Math.abs(watt), kilowatt);
   const parts = [
     `reactions ${released < 0 ? "take up" : "set free"} ${kW(released)}`,
@@ -77,7 +77,14 @@ function heatLines({ released, walls, carried, closure }: HeatBalance): (readonl
     ),
     `the streams carry ${carried < 0 ? "in" : "out"} ${kW(carried)}`,
   ];
-  return [["heat", `${parts.join(", ")}; closes to ${formatNumber(Math.abs(closure), 1)}`]];
+  const passed = exchanged.map(
+    (e) =>
+      [
+        "heat exchange",
+        `${e.outlet} ${e.passed < 0 ? "cools" : "warms"} ${e.feed} by ${kW(e.passed)}, which stays in the vessel`,
+      ] as const,
+  );
+  return [...passed, ["heat", `${parts.join(", ")}; closes to ${formatNumber(Math.abs(closure), 1)}`]];
 }
 
 const asPercent = /^(conversion|yield|selectivity)/;

@@ -114,6 +114,16 @@ export const chemistryEntries = {
     says: ({ name, key, why }) => `\`${key}\` names '${name}', which ${why}`,
     fix: "name a compartment that liquid flows through",
   }),
+  "exchanger-twice": entry<{ side: "feed" | "outlet"; name: string }>({
+    severity: "error",
+    says: ({ side, name }) => `${side} '${name}' passes two exchangers of \`heat-exchange\``,
+    fix: "name every feed and every outlet once: two exchangers in a row are one with the sum of their conductances",
+  }),
+  "effectiveness-range": entry<Record<string, never>>({
+    severity: "error",
+    says: () => "an exchanger cannot pass more heat than brings the smaller flow to the other's temperature",
+    fix: "give an effectiveness of at most 100 %, such as 70 %",
+  }),
   "feed-temperature-unused": entry<{ feed: string }>({
     severity: "warning",
     says: ({ feed }) =>

@@ -116,6 +116,35 @@ export const dutyShape = record({
       ),
     ),
   },
+  "heat-exchange": {
+    says: "Feeds that what leaves warms (or cools) before they enter, in counterflow, beside `heat`. A vessel that warms its own feed may have several steady states.",
+    example: "[{warms: feed, from: product, effectiveness: 70 %}]",
+    needs: "heat",
+    shape: list(
+      record(
+        {
+          warms: { shape: name, says: "The feed.", required: true, example: "feed" },
+          from: {
+            shape: name,
+            says: "The outlet whose liquid passes on the other side: all that leaves there.",
+            required: true,
+            example: "product",
+          },
+          effectiveness: {
+            shape: quantity("ratio"),
+            says: "The heat that passes as a share of what could: the smaller of the two flows brought to the other's temperature.",
+            example: "70 %",
+          },
+          conductance: {
+            shape: quantity("heat conductance"),
+            says: "Instead of `effectiveness`: coefficient times area of an exchanger in counterflow, which follows the flows.",
+            example: "200 W/K",
+          },
+        },
+        ["effectiveness", "conductance"],
+      ),
+    ),
+  },
   regulated: {
     says: "Figures of a regulator's contact-time method, told in a block of their own and never as a prediction: theoretical detention time (volume over flow), t10, baffling factor, CT and the credit that your own table gives for it. backmix has no such table: what is not declared here is not told.",
     example: "{at: product, residual: 0.8 mg/L, inactivation: {giardia: {log: 3, ct: 131 mg·min/L}}}",
