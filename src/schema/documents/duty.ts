@@ -134,6 +134,7 @@ export const dutyShape = record({
             shape: quantity("ratio"),
             says: "The heat that passes as a share of what could: the smaller of the two flows brought to the other's temperature.",
             example: "70 %",
+            snippet: "70 %",
           },
           conductance: {
             shape: quantity("heat conductance"),
