@@ -112,6 +112,8 @@ const shownBy: Record<keyof typeof runEntries, string> = {
   "nothing-to-fit": "fit/findings.test.ts",
   "no-points": "fit/findings.test.ts",
   "no-signal-to-fit": "fit/run-codes.test.ts",
+  "only-noise-to-fit": "fit/nothing.test.ts",
+  "explains-nothing": "fit/nothing.test.ts",
   "spreads-differ": "fit/run-codes.test.ts",
   "too-few-points": "fit/run-codes.test.ts",
   "no-start": "fit/run-codes.test.ts",

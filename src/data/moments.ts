@@ -8,7 +8,7 @@ import { distributionOf } from "./distribution.js";
 import { momentErrors } from "./error.js";
 import { type Figure, figure, type Known } from "./figure.js";
 import { type Finding, finding } from "./finding.js";
-import { closedPeclet, holdback, segregation } from "./indices.js";
+import { areaError, closedPeclet, efficiency, holdback, meanOver, segregation, slopeOf } from "./indices.js";
 import { inletMoments } from "./inlet.js";
 import { gradeOf, hopeless, judgeBaseline, judgeEnds, judgeMean, judgeRecovery } from "./judge.js";
 import { judgeLog } from "./judge-log.js";
@@ -162,10 +162,18 @@ export function readCurve(
   const byNoise = Math.sqrt(varianceOfSum(found.gradient.area, response.sd, response.time, curve.noise.persistence));
   const unsure = Math.sqrt(Math.max(0, errors.area ** 2 - byNoise ** 2)) / found.area;
   const percentile = (p: number): Figure => figure(at(p), time, percentileError(F, seenError, F.quantile(p), unsure));
+  const error10 = percentileError(F, seenError, F.quantile(0.1), unsure);
+  const error90 = percentileError(F, seenError, F.quantile(0.9), unsure);
+  const times = tau && { ...tau, error: meanOver(F.time, seenError, tau.value) + unsure };
   const indices: Record<string, Figure> = {
-    morrill: figure(t10 !== undefined && t90 !== undefined && t10 > 0 ? t90 / t10 : undefined, one),
+    morrill: figure(
+      t10 !== undefined && t90 !== undefined && t10 > 0 ? t90 / t10 : undefined,
+      one,
+      ((t90 ?? 0) / (t10 ?? 1)) *
+        Math.hypot((error10 ?? Number.NaN) / (t10 ?? 1), (error90 ?? Number.NaN) / (t90 ?? 1)),
+    ),
     tanks: figure(known && variance > 0 ? 1 / relative : undefined, one, errors.relative / relative ** 2),
-    peclet: figure(known ? closedPeclet(relative) : undefined, one),
+    peclet: figure(known ? closedPeclet(relative) : undefined, one, slopeOf(closedPeclet, relative) * errors.relative),
     ...(whole && alone
       ? {
           "effective-volume": effectiveVolume(
@@ -176,11 +184,24 @@ export function readCurve(
           ),
         }
       : {}),
-    ...(tau && !inlet
+    ...(times && !inlet
       ? {
-          holdback: figure(known ? holdback(F, tau.value) : undefined, one),
-          segregation: figure(known ? segregation(F, tau.value) : undefined, one),
-          "t10-over-tau": figure(t10 === undefined ? undefined : t10 / tau.value, one),
+          holdback: figure(
+            known ? holdback(F, times.value) : undefined,
+            one,
+            areaError((t) => holdback(F, t), times),
+          ),
+          segregation: figure(
+            known ? segregation(F, times.value) : undefined,
+            one,
+            areaError((t) => segregation(F, t), times),
+          ),
+          "t10-over-tau": figure(
+            t10 === undefined ? undefined : t10 / times.value,
+            one,
+            Math.hypot(error10 ?? Number.NaN, ((times.sd ?? 0) * (t10 ?? 0)) / times.value) / times.value,
+          ),
+          ...(response.is === "density" ? { "hydraulic-efficiency": efficiency(response, times) } : {}),
         }
       : {}),
     ...(tau

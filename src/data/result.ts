@@ -128,7 +128,7 @@ export function nothing(curve: CleanCurve, time: Unit): ReadingMoments {
     tail: { is: "open", level: Number.NaN },
     tailShare: { area: 0, mean: 0, variance: 0 },
     noise: noiseFigure(curve),
-    steps: curve.steps,
+    steps: curve.steps.map((s) => ({ ...s, mean: undefined, variance: undefined, t10: undefined })),
     curve: undefined,
   };
 }

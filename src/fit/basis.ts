@@ -1,6 +1,6 @@
-/** Orthonormal columns that span the same, by Gram-Schmidt run twice; dependent ones are left out. */
-export function orthonormalBasis(columns: readonly Float64Array[]): Float64Array[] {
-  const basis: Float64Array[] = [];
+/** Orthonormal columns that span the same, by Gram-Schmidt run twice; dependent ones are left out. Those of `from` come first. */
+export function orthonormalBasis(columns: readonly Float64Array[], from: readonly Float64Array[] = []): Float64Array[] {
+  const basis = [...from];
   for (const c of columns) {
     const q = Float64Array.from(c);
     const before = norm(c);

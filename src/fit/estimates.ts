@@ -51,15 +51,18 @@ export function estimatesOf({ problem, x, at }: Settled): Estimates {
   const freedom = freedomOf(problem);
   const variance = freedom > 0 ? at.ofAll / freedom : Number.NaN;
   const basis = orthonormalBasis(kept.map((j) => columns[j]));
-  const autocorrelation = autocorrelationOf(setup.blocks, at.residuals, basis);
-  const hanging = hangingTogether(autocorrelation, plain, basis, at.ofAll, freedom);
+  // What a calibration leaves open bends whole curves: it is carried by itself, and is no reason to call readings correlated.
+  const shifts = calibrationShifts(problem);
+  const wider = orthonormalBasis(shifts, basis);
+  const autocorrelation = autocorrelationOf(setup.blocks, at.residuals, wider);
+  const hanging = hangingTogether(autocorrelation, plain, basis, wider.slice(basis.length), at.residuals, freedom);
   const slopes = setup.coordinates.map((c, j) => c.slope(x[j]));
   const constants = setup.constants.flatMap((c) => {
     const shift = constantSlope(problem, x, at, c);
     return shift ? [whole.respond(shift)] : [];
   });
 
-  for (const shift of calibrationShifts(problem)) constants.push(whole.respond(shift));
+  for (const shift of shifts) constants.push(whole.respond(shift));
 
   const plainAt = (i: number, j: number): number => variance * plain.inverse[i * plain.n + j];
   // In coordinates: the data's part grows with autocorrelation, then come held facts, then constants.

@@ -25,6 +25,7 @@ export interface Ended {
 export function findingsOf(ended: Ended): FitFinding[] {
   return [
     ...howItEnded(ended),
+    ...explainsNothing(ended),
     ...cannotTell(ended),
     ...bounds(ended),
     ...crooked(ended),
@@ -50,6 +51,31 @@ function howItEnded(e: Ended): FitFinding[] {
   const { evaluations } = e.setup.cost;
   if (e.cancelled) return [say(e, "fit-cancelled", { evaluations }, [], { evaluations })];
   return e.converged ? [] : [say(e, "fit-not-converged", { evaluations }, [], { evaluations })];
+}
+
+/** Weighted sums of squares that a fit leaves, and that a flat line through each reading would. */
+export function flatLines(readings: readonly FittedReading[]): { readonly fitted: number; readonly flat: number } {
+  let [fitted, flat] = [0, 0];
+  for (const { measured, residual, weight } of readings) {
+    let [sum, total] = [0, 0];
+    for (let i = 0; i < weight.length; i++) {
+      total += weight[i] ** 2;
+      sum += weight[i] ** 2 * measured[i];
+    }
+    const level = sum / total;
+    for (let i = 0; i < weight.length; i++) {
+      fitted += (weight[i] * residual[i]) ** 2;
+      flat += (weight[i] * (measured[i] - level)) ** 2;
+    }
+  }
+  return { fitted, flat };
+}
+
+/** Is a flat line through each reading as good? */
+function explainsNothing(e: Ended): FitFinding[] {
+  if (e.cancelled || e.setup.blocks.some((b) => b.declared.of || b.censored)) return [];
+  const { fitted, flat } = flatLines(e.readings);
+  return fitted >= flat && flat > 0 ? [say(e, "explains-nothing", { times: fitted / flat }, [], { fitted, flat })] : [];
 }
 
 /** Combinations that leave the curve as it is, as far as parameters take part. */

@@ -1,5 +1,6 @@
 import { checkTrial } from "../check/trial.js";
 import { compile } from "../compile/compile.js";
+import { isNoise } from "../data/noise.js";
 import { hasSignal } from "../data/signal.js";
 import type { Network } from "../model/network.js";
 import type { Trial } from "../model/trial.js";
@@ -11,7 +12,7 @@ import { formatQuantity } from "../units/format.js";
 import { condense } from "./condense.js";
 import { criteriaOf } from "./criteria.js";
 import { estimatesOf } from "./estimates.js";
-import { findingsOf } from "./findings.js";
+import { findingsOf, flatLines } from "./findings.js";
 import type { ForwardModel } from "./forward.js";
 import { modelOf } from "./model-of.js";
 import { countOf, thinned } from "./observations.js";
@@ -93,17 +94,33 @@ export function fitWith(
     report("no-start", network.at, { tried: setup.cost.evaluations });
     return { fit: undefined, problems };
   }
+  if (nothingButNoise(setup, settled, report)) return { fit: undefined, problems };
   return { fit: resultOf(setup, settled, found, options.profile === true, watch), problems };
 }
 
 /** A fit to nothing but constants would be numbers made of nothing. One reading that moves is enough. */
 function anySignal({ blocks }: Setup, report: Report): boolean {
-  if (blocks.some((b) => b.declared.of?.steady || hasSignal(b.measured))) return true;
   const [{ key, declared, measured }] = blocks;
+  if (blocks.some((b) => b.declared.of?.steady || hasSignal(b.measured))) return true;
   const value = formatQuantity(measured[0], declared.unit, 3);
   report("no-signal-to-fit", declared.where, { key, value, others: blocks.length - 1 });
   return false;
 }
+
+/** Does every reading look like noise, and the fit leave no less of it than a flat line, by the penalty of BIC for its parameters? */
+function nothingButNoise(setup: Setup, settled: Settled, report: Report): boolean {
+  const { blocks, observations: n, coordinates } = setup;
+  if (blocks.some((b) => b.declared.of || b.time.length < fewestForNoise || !isNoise(b.time, b.measured))) return false;
+  const { fitted, flat } = flatLines(readingsOf(setup, settled));
+  const more = coordinates.length + Math.max(0, settled.problem.linear - blocks.length);
+  if (n * Math.log(fitted / flat) + more * Math.log(n) < 0) return false;
+  const [{ declared, key }] = blocks;
+  report("only-noise-to-fit", declared.where, { key, others: blocks.length - 1 });
+  return true;
+}
+
+/** Points below which noise is not told from a curve. */
+const fewestForNoise = 12;
 
 /** Points that the search for the right valley looks at; the last descent takes them all. */
 const searchPoints = 600;

@@ -24,8 +24,8 @@ export interface HangingTogether {
  * give. The variance counts what the fit took out of residuals that hang together; its degrees of freedom are F. E.
  * Satterthwaite's (Biometrics Bull. 2 (1946) 110-114).
  * @param basis     orthonormal columns that span those of the theory
- * @param sum       of squared residuals
- * @param freedom   of that sum, were the residuals independent
+ * @param besides   further orthonormal columns that count as known of the residuals: they are told elsewhere
+ * @param freedom   of the sum of squared residuals, were they independent
  * @returns undefined where they are
  * @see G. A. F. Seber, C. J. Wild, Nonlinear Regression, Wiley 1989, section 6.2
  */
@@ -33,19 +33,24 @@ export function hangingTogether(
   { strands, effectiveForVariance }: Autocorrelation,
   theory: LinearTheory,
   basis: readonly Float64Array[],
-  sum: number,
+  besides: readonly Float64Array[],
+  residuals: Float64Array,
   freedom: number,
 ): HangingTogether | undefined {
   if (strands.length === 0) return undefined;
   const p = basis.length;
   const { n } = theory;
-  const correlated = basis.map((q) => {
+  const times = (q: Float64Array): Float64Array => {
     const v = Float64Array.from(q);
     for (const { rows, phi } of strands) correlate(rows, phi, q, v);
     return v;
-  });
-  const taken = basis.reduce((trace, q, k) => trace + dot(q, correlated[k]), 0);
-  const variance = sum / Math.max(1, freedom + p - taken);
+  };
+  const correlated = basis.map(times);
+  const taken =
+    basis.reduce((trace, q, k) => trace + dot(q, correlated[k]), 0) +
+    besides.reduce((trace, q) => trace + dot(q, times(q)), 0);
+  const sum = dot(residuals, residuals) - besides.reduce((known, q) => known + dot(q, residuals) ** 2, 0);
+  const variance = Math.max(0, sum) / Math.max(1, freedom + p - taken);
   // J+ = B Q', column by column of Q.
   const ways = basis.map((q) => theory.respond(q));
   const covariance = new Float64Array(n * n).fill(Number.NaN);

@@ -99,7 +99,7 @@ class Resampler implements Refits {
     const columns = fullJacobian(problem, x, at).filter((_, j) => j < setup.coordinates.length || j >= x.length);
     const basis = orthonormalBasis(columns);
     const autocorrelation = autocorrelationOf(setup.blocks, at.residuals, basis);
-    const hanging = hangingTogether(autocorrelation, linearTheory(columns), basis, at.ofData, freedom);
+    const hanging = hangingTogether(autocorrelation, linearTheory(columns), basis, [], at.residuals, freedom);
     const { significant, lag1 } = autocorrelation;
     this.phi = new Map(autocorrelation.strands.map((s) => [s.block, s.phi]));
     this.names = setup.coordinates.map((c) => c.name);

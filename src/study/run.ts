@@ -2,6 +2,7 @@ import { compile } from "../compile/compile.js";
 import { readMoments } from "../data/moments.js";
 import { type FitOptions, fit } from "../fit/fit.js";
 import { withKinetics } from "../fit/kinetics.js";
+import type { Fit } from "../fit/result.js";
 import type { Duty } from "../model/duty.js";
 import type { Network } from "../model/network.js";
 import type { Asked, Rival, Study } from "../model/study.js";
@@ -61,7 +62,13 @@ export function runStudy(study: Study, options: StudyOptions = {}): StudyResult 
   });
   const standing = standings(fitted.map((f) => f.fit));
   const ranked = fitted
-    .map((f, i): Ranked => ({ ...f, standing: standing[i], survives: f.fit !== undefined && survives(standing[i]) }))
+    .map(
+      (f, i): Ranked => ({
+        ...f,
+        standing: standing[i],
+        survives: f.fit !== undefined && survives(standing[i]) && !explainsNothing(f.fit),
+      }),
+    )
     .sort((a, b) => a.standing.difference - b.standing.difference);
   const ranking = withProfiles(study, ranked, options, cancelled);
   const survivors = ranking.filter((r) => r.survives && r.plant);
@@ -141,6 +148,8 @@ function withProfiles(
   const { fit: again } = fitRival(study, best.rival, options, cancelled, true);
   return [again && !again.stopped ? { ...best, fit: again } : best, ...others];
 }
+
+const explainsNothing = (fit: Fit): boolean => fit.findings.some((f) => f.code === "explains-nothing");
 
 /** Those that may be compared: few enough that every pair is looked at. */
 function fittedRivals(ranking: readonly Ranked[]) {

@@ -106,12 +106,11 @@ describe("a calibration curve", () => {
   test("widens the interval of a fit as far as it moves the optimum", () => {
     const network = parseNetwork(`network: Tanks
 format: 1
-parameters: {lost: {value: 30 L, between: [0 L, 150 L]}, share: {value: 80 %, between: [20 %, 100 %]}}
-feeds: {feed: {flow: 10 L/min, to: {row: share, away: rest}}}
+parameters: {held: {value: 190 L, between: [50 L, 400 L]}, clean: {value: 1 L/min, between: [0 L/min, 8 L/min]}}
+feeds: {feed: {flow: 10 L/min, to: row}, water: {flow: clean, to: product}}
 compartments:
-  row: {kind: stirred, volume: 200 L - lost, repeat: 3, to: product}
-  under: {kind: dead, volume: lost}
-outlets: [product, away]
+  row: {kind: stirred, volume: held, repeat: 3, to: product}
+outlets: [product]
 `).document as Network;
     const noise = seeded(11);
     const found = Array.from({ length: 25 }, () => {
@@ -121,7 +120,8 @@ outlets: [product, away]
         `${points}\nnoise: {floor: 0.0001 g/L}`,
         { ...detector, files: { "s.csv": table } },
       );
-      const p = fit(network, [trial], { starts: 0 }).fit?.parameters.find((q) => q.name === "share");
+      const p = fit(network, [trial], { starts: 0 }).fit?.parameters.find((q) => q.name === "clean");
+      expect(p?.standardError).toBeDefined();
       const [low, high] = p?.interval95 ?? [0, 0];
       return { value: p?.value ?? 0, half: (high - low) / 2 };
     });

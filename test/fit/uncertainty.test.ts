@@ -129,7 +129,7 @@ outlets: [out]
 
   test("a parameter with ± is held by it where the data say little", () => {
     const prior = tank("130 L ± 2 L");
-    const weak = fitted(prior, [make(plain, 3, { sd: 0.5 })]);
+    const weak = fitted(prior, [make(plain, 3, { sd: 0.2 })]);
     expect(weak.parameters[0].value * 1e3).toBeGreaterThan(125);
     expect((weak.parameters[0].standardError ?? NaN) * 1e3).toBeLessThan(2.001);
     expect((weak.parameters[0].standardError ?? NaN) * 1e3).toBeGreaterThan(1.5);

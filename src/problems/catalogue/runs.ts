@@ -73,6 +73,20 @@ export const runEntries = {
     fix: "check the column, the detector and the dose; where no tracer came by, there is nothing that a network could explain",
     example: { key: "Salt pulse/product", value: "0 g/L", others: 0 },
   }),
+  "only-noise-to-fit": entry({
+    severity: "error",
+    says: (d: { key: string; others: number }) =>
+      `'${d.key}' is not told from noise${d.others > 0 ? `, nor ${d.others === 1 ? "is the other reading" : `are the ${d.others} other readings`}` : ""}: any fit to it would be numbers made of nothing`,
+    fix: "plan a larger dose (`backmix plan`): a peak should be 50 times the noise or more; check that this is the right column",
+    example: { key: "Salt pulse/product", others: 0 },
+  }),
+  "explains-nothing": entry({
+    severity: "warning",
+    says: (d: { times: number }) =>
+      `the network explains nothing of these readings: the fit leaves ${d.times > 100 ? "more than 100" : d.times.toFixed(1)} times the sum of squares that a flat line through each leaves`,
+    fix: "take no number from it: check dose, units, time zero and which outlet was read; `scale: free` shows whether the shape alone would fit",
+    example: { times: 3.2 },
+  }),
   "too-few-points": entry({
     severity: "error",
     says: (d: { points: number; unknowns: number }) =>

@@ -14,6 +14,11 @@ export function answerOf(result: StudyResult): AnswerLine[] {
   if (!best?.fit || !best.plant) {
     return [{ about: "No answer", says: "No network could be fitted to these trials; see the findings." }];
   }
+  if (best.fit.findings.some((f) => f.code === "explains-nothing")) {
+    const says =
+      "No network that was tried explains these trials better than a flat line: check dose, units, time zero and outlet before anything else.";
+    return [{ about: "No answer", says }];
+  }
   const lines = traitsOf(best.plant, best.fit).map((t) => t.line);
   const wrong =
     lines.length > 0

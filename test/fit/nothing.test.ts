@@ -1,0 +1,69 @@
+import { describe, expect, test } from "vitest";
+import { fit } from "../../src/fit/fit.js";
+import { networkOf, trialOf } from "./load.js";
+import { every, noisy, synthetic } from "./synthetic.js";
+
+const tank = networkOf(`network: One tank
+format: 1
+parameters:
+  held: {value: 80 L, between: [10 L, 500 L]}
+feeds: {feed: {flow: 10 L/min, to: bulk}}
+compartments: {bulk: {kind: stirred, volume: held, to: out}}
+outlets: [out]
+`);
+
+const log = (value: (i: number) => number, baseline = "none", title = "Log") =>
+  trialOf(
+    `trial: ${title}
+format: 1
+injection: {at: feed, pulse: 50 g}
+readings:
+  - at: out
+    file: log.csv
+    time: {column: t, unit: min}
+    value: {column: c, unit: g/L}
+    baseline: ${baseline}
+`,
+    () => `t,c\n${Array.from({ length: 60 }, (_, i) => `${i},${value(i)}\n`).join("")}`,
+  );
+
+describe("readings of nothing", () => {
+  test.each(["none", "constant", "drift"])("only noise is refused, whatever the baseline: %s", (baseline) => {
+    for (let seed = 1; seed < 12; seed++) {
+      const noise = noisy(seed, 0.01);
+      const { fit: found, problems } = fit(tank, [log(() => 0.2 + noise(), baseline)], { starts: 0 });
+      expect(found).toBeUndefined();
+      expect(problems.map((p) => p.code)).toEqual(["only-noise-to-fit"]);
+    }
+  });
+
+  test("beside a reading that shows tracer it is a reading like any other", () => {
+    const noise = noisy(3, 0.003);
+    const seen = synthetic(
+      tank,
+      { held: 0.1 },
+      { injection: "{at: feed, pulse: 50 g}", at: "out", times: every(1, 40), noise },
+    );
+    const silent = noisy(5, 0.01);
+    expect(fit(tank, [seen, log(() => silent())], { starts: 0 }).fit).toBeDefined();
+  });
+
+  test("a log that only rises is fitted, and the first finding says that it explains nothing", () => {
+    const { fit: found } = fit(tank, [log((i) => 0.1 + 0.001 * i)], { starts: 0 });
+    expect(found?.findings[0].code).toBe("explains-nothing");
+    expect(Number(found?.findings[0].evidence.fitted)).toBeGreaterThan(Number(found?.findings[0].evidence.flat));
+  });
+
+  test("curves with tracer in them never are nothing, down to a peak of six times the noise", () => {
+    for (let seed = 1; seed < 20; seed++) {
+      const trial = synthetic(
+        tank,
+        { held: 0.1 },
+        { injection: "{at: feed, pulse: 50 g}", at: "out", times: every(1, 40), noise: noisy(seed, 0.08) },
+      );
+      const { fit: found } = fit(tank, [trial], { starts: 0 });
+      expect(found?.findings.map((f) => f.code)).not.toContain("explains-nothing");
+      expect(found).toBeDefined();
+    }
+  });
+});
