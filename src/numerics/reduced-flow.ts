@@ -1,4 +1,8 @@
-import { product as times } from "./squaring.js";
+import { type DenseProducts, denseProducts, padded } from "./dense-kernels.js";
+import { roomFor, Workspace } from "./wasm/workspace.js";
+
+/** Terms of the series over a step that is a quarter of what the matrix changes in: the next is under 1e-17. */
+const terms = 12;
 
 /**
  * exp(t T) and its integrals over t applied to a first unit vector, for one small dense matrix T and any number of times: powers
@@ -6,13 +10,15 @@ import { product as times } from "./squaring.js";
  * @see N.J. Higham, SIAM J. Matrix Anal. Appl. 26 (2005) 1179-1193 (scaling and squaring)
  */
 export class ReducedFlow {
-  private readonly size: number;
   private readonly whole: number;
   /** exp(2^j short B) - 1. */
   private readonly steps: Float64Array[] = [];
   private readonly matrix: Float64Array;
   private readonly short: number;
-  private readonly scratch: [Float64Array, Float64Array];
+  private readonly products: DenseProducts;
+  private readonly x: Float64Array;
+  private readonly y: Float64Array;
+  private readonly term: Float64Array;
 
   /**
    * @param t    n x n, row-major, 1/s
@@ -25,49 +31,58 @@ export class ReducedFlow {
     private readonly span: number,
   ) {
     // Three more unknowns, each the integral of the next: the first drives the first of T.
-    const size = n + 3;
-    const b = new Float64Array(size * size);
-    for (let i = 0; i < n; i++) b.set(t.subarray(i * n, (i + 1) * n), i * size);
+    const order = padded(n + 3);
+    const b = new Float64Array(order * order);
+    for (let i = 0; i < n; i++) b.set(t.subarray(i * n, (i + 1) * n), i * order);
     b[n] = 1;
     // In units of the span, so that their sizes are alike.
-    b[n * size + n + 1] = 1 / span;
-    b[(n + 1) * size + n + 2] = 1 / span;
+    b[n * order + n + 1] = 1 / span;
+    b[(n + 1) * order + n + 2] = 1 / span;
     let norm = 0;
-    for (let i = 0; i < size; i++) {
+    for (let i = 0; i < order; i++) {
       let sum = 0;
-      for (let j = 0; j < size; j++) sum += Math.abs(b[i * size + j]);
+      for (let j = 0; j < order; j++) sum += Math.abs(b[i * order + j]);
       norm = Math.max(norm, sum);
     }
     const doublings = Math.max(0, Math.ceil(Math.log2(norm * span * 4)));
-    this.size = size;
+    const square = order * order;
+    const workspace = new Workspace(
+      roomFor({ floats: [...new Array<number>(doublings + 4).fill(square), order, order, order] }),
+    );
+    this.products = denseProducts(order, workspace);
     this.whole = n;
-    this.matrix = b;
+    this.matrix = workspace.floats(square);
+    this.matrix.set(b);
     this.short = span / 2 ** doublings;
-    this.scratch = [new Float64Array(size), new Float64Array(size)];
-    let f = shortStep(b, size, this.short);
+    [this.x, this.y, this.term] = [workspace.floats(order), workspace.floats(order), workspace.floats(order)];
+    const scratch = [workspace.floats(square), workspace.floats(square)];
     for (let j = 0; j <= doublings; j++) {
-      this.steps.push(f);
-      if (j < doublings) f = doubled(f, size);
+      const step = workspace.floats(square);
+      if (j === 0) this.shortStep(step, scratch);
+      else this.double(this.steps[j - 1], step);
+      this.steps.push(step);
     }
   }
 
   /** The first n unknowns at time t: order 0 of exp(t T) e1, else of its integral taken so many times. Good until the next call. */
   at(t: number, order: number): Float64Array {
-    const { size, whole, steps, short, span } = this;
-    const [x, y] = this.scratch;
+    const { whole, steps, short, span, x, y, term, products } = this;
+    const size = whole + 3;
     x.fill(0);
     x[order === 0 ? 0 : whole + order - 1] = order < 2 ? 1 : span ** (order - 1);
     let count = Math.floor(t / short);
     const rest = t - count * short;
     for (let j = steps.length - 1; j >= 0; j--) {
       const one = 2 ** j;
-      for (; count >= one; count -= one) addProduct(steps[j], size, x, y);
+      for (; count >= one; count -= one) {
+        products.apply(steps[j], x, y);
+        for (let i = 0; i < size; i++) x[i] += y[i];
+      }
     }
     // What is left is shorter than the shortest step: a few terms.
-    const term = x.slice();
-    for (let k = 1; k <= 12; k++) {
-      y.fill(0);
-      product(this.matrix, size, term, y);
+    term.set(x);
+    for (let k = 1; k <= terms; k++) {
+      products.apply(this.matrix, term, y);
       for (let i = 0; i < size; i++) {
         term[i] = (y[i] * rest) / k;
         x[i] += term[i];
@@ -75,36 +90,28 @@ export class ReducedFlow {
     }
     return x.subarray(0, whole);
   }
-}
 
-/** x += F x. */
-function addProduct(f: Float64Array, n: number, x: Float64Array, y: Float64Array): void {
-  product(f, n, x, y);
-  for (let i = 0; i < n; i++) x[i] += y[i];
-}
-
-function product(a: Float64Array, n: number, x: Float64Array, y: Float64Array): void {
-  for (let i = 0, e = 0; i < n; i++) {
-    let sum = 0;
-    for (let j = 0; j < n; j++) sum += a[e++] * x[j];
-    y[i] = sum;
+  /** exp(short B) - 1 by its series. */
+  private shortStep(step: Float64Array, [term, next]: Float64Array[]): void {
+    const { matrix, short, products } = this;
+    let [now, then] = [term, next];
+    for (let i = 0; i < step.length; i++) {
+      now[i] = matrix[i] * short;
+      step[i] = now[i];
+    }
+    for (let k = 2; k <= terms; k++) {
+      products.multiply(now, matrix, then);
+      for (let i = 0; i < step.length; i++) {
+        then[i] *= short / k;
+        step[i] += then[i];
+      }
+      [now, then] = [then, now];
+    }
   }
-}
 
-/** exp(h B) - 1 by its series; h |B| is at most a quarter. */
-function shortStep(b: Float64Array, n: number, h: number): Float64Array {
-  let term = b.map((v) => v * h);
-  const sum = term.slice();
-  for (let k = 2; k <= 12; k++) {
-    term = times(term, b, n).map((v) => (v * h) / k);
-    for (let i = 0; i < sum.length; i++) sum[i] += term[i];
+  /** (1 + F)^2 - 1. */
+  private double(f: Float64Array, twice: Float64Array): void {
+    this.products.multiply(f, f, twice);
+    for (let i = 0; i < f.length; i++) twice[i] += 2 * f[i];
   }
-  return sum;
-}
-
-/** (1 + F)^2 - 1. */
-function doubled(f: Float64Array, n: number): Float64Array {
-  const g = times(f, f, n);
-  for (let i = 0; i < g.length; i++) g[i] += 2 * f[i];
-  return g;
 }
