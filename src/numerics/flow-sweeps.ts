@@ -41,9 +41,11 @@ export class FlowSweeps {
       for (let k = 0, at = 0; k < size; k++) {
         const p = descending ? size - 1 - k : k;
         const [from, to] = descending ? [middle[p], start[p + 1]] : [start[p], middle[p]];
-        for (let e = from; e < to; e++) {
+        // The row that was done last comes last: all others are added up by the time it is.
+        for (let n = 0; n < to - from; n++, at++) {
+          const e = descending ? to - 1 - n : from + n;
           made.share[at] = rows.share[e];
-          made.column[at++] = 8 * m * rows.column[e];
+          made.column[at] = 8 * m * rows.column[e];
         }
         made.end[k] = made.column.byteOffset + 4 * at;
       }
