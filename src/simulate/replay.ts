@@ -63,7 +63,15 @@ export class Replay {
   ): Replayed | undefined {
     if (!this.holds(inputs)) return undefined;
     this.program.slopes(seeds, directions);
-    const zeros = (): Float64Array[] => wanted.map(({ time }) => new Float64Array(time.length));
+    // One piece of memory for all: many small ones cost more than what is written to them.
+    const size = wanted.reduce((sum, { time }) => sum + time.length, 0);
+    const all = new Float64Array(size * (1 + directions));
+    let place = 0;
+    const zeros = (): Float64Array[] =>
+      wanted.map(({ time }) => {
+        place += time.length;
+        return all.subarray(place - time.length, place);
+      });
     const curves = zeros();
     const slopes = Array.from({ length: directions }, zeros);
     for (const put of this.recorded.puts) this.add(put, wanted, directions, { curves, slopes });
