@@ -1,4 +1,3 @@
-import { memberOf } from "../model/members.js";
 import { followedIn, isClosed, type Network } from "../model/network.js";
 import type { Reacting, Trial } from "../model/trial.js";
 import type { Report } from "../problems/report.js";
@@ -6,6 +5,7 @@ import { nearest } from "../text/nearest.js";
 import type { Span } from "../text/source.js";
 import { inBasis } from "../units/basis.js";
 import { dimensions } from "../units/dimension.js";
+import { checkHolds } from "./holds.js";
 import { isCell, placeNames } from "./places.js";
 import { sameKind } from "./same-kind.js";
 
@@ -34,8 +34,10 @@ export function checkReacting(given: Network, trial: Trial, reacting: Reacting, 
   for (const [name, value] of trial.flows)
     if (look(name, value.at, "feed", feeds)) sameKind(inBasis(dimensions.flow, network.basis), value, report);
   checkConstants(network, trial, reacting, look, report);
-  if (isClosed(network)) checkFlask(network, trial, reacting, report);
-  else checkSettled(trial, reacting, feeds, look, report);
+  for (const { line, where } of trial.readings)
+    if (line.lag) report("not-yet", where, { what: "the `lag` of a detector in a trial of a reaction" });
+  if (isClosed(network)) checkFlask(network, trial, reacting, look, report);
+  else checkFed(network, trial, reacting, feeds, look, report);
 }
 
 function checkConstants(network: Network, trial: Trial, { chemistry }: Reacting, look: Look, report: Report): void {
@@ -59,35 +61,27 @@ function checkConstants(network: Network, trial: Trial, { chemistry }: Reacting,
 }
 
 /** A flask is followed in time from what it held. */
-function checkFlask({ compartments }: Network, trial: Trial, reacting: Reacting, report: Report): void {
-  const named = compartments.map((c) => c.name);
+function checkFlask(network: Network, trial: Trial, reacting: Reacting, look: Look, report: Report): void {
   for (const [name, { at }] of reacting.feeds) report("flask-is-fed", at, { name });
   const steady = trial.readings.find((r) => r.of?.steady);
   if (steady) report("steady-in-flask", steady.where, {});
   if (reacting.contents.size === 0) report("flask-without-contents", reacting.at, {});
-  for (const [name, { at }] of reacting.contents) {
-    if (name === "all" || named.includes(name) || memberOf(compartments, name)) continue;
-    report("unknown-place", at, {
-      name,
-      nearest: nearest(name, named),
-      wanted: "compartment",
-      known: ["all", ...named],
-    });
-  }
+  for (const [name, { at }] of reacting.contents) checkHolds(network, name, at, look, report);
 }
 
-/** A vessel with feeds is known where it has settled. */
-function checkSettled(trial: Trial, reacting: Reacting, feeds: readonly string[], look: Look, report: Report): void {
+/** Of a vessel with feeds all that they bring must be known. */
+function checkFed(
+  network: Network,
+  trial: Trial,
+  reacting: Reacting,
+  feeds: readonly string[],
+  look: Look,
+  report: Report,
+): void {
   const known = [...reacting.feeds].filter(([name, { at }]) => look(name, at, "feed", feeds));
   // A slip in the name of a feed is not that the feed is forgotten, too.
   if (known.length === reacting.feeds.size)
     for (const feed of feeds) if (!reacting.feeds.has(feed)) report("feed-not-given", trial.at, { feed });
-  const timed = trial.readings.find((r) => !r.of?.steady);
-  if (timed)
-    report("not-yet", timed.where, {
-      what: "a reading over time of a reaction in a vessel with feeds",
-    });
-  const [content] = reacting.contents.values();
-  if (content) report("not-yet", content.at, { what: "`contents` of a reacting vessel with feeds" });
+  for (const [name, { at }] of reacting.contents) checkHolds(network, name, at, look, report);
   if (trial.flowLogs) report("not-yet", trial.at, { what: "a logged flow in a trial of a reaction" });
 }

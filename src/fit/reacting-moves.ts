@@ -4,13 +4,25 @@ import type { Trial } from "../model/trial.js";
 import type { At, Direction } from "./forward.js";
 import type { Point } from "./reacting-scene.js";
 
-/** Half width of a central difference along a coordinate, which runs from 0 to 1, and along a fact, in its standard deviations. */
-const stepOf = { flask: 1e-5, settled: 1e-4, fact: 1e-2 };
+/**
+ * Half width of a central difference along a coordinate, which runs from 0 to 1, and along a fact, in its standard deviations: of
+ * right-hand sides, which are exact, of steady states (to 1e-11), of courses in time (to 1e-8).
+ */
+export const steps = {
+  flask: { coordinate: 1e-5, fact: 1e-2 },
+  settled: { coordinate: 1e-4, fact: 1e-2 },
+  inTime: { coordinate: 1e-3, fact: 0.1 },
+} as const;
 
 /** How far to move a trial of a reaction along a direction to see what it does; 0 where it does nothing. */
-export function stepAlong(network: Network, trial: Trial, { shifted }: At, direction: Direction): number {
-  const { names, day, changed } = direction;
-  if (changed || day) return stepOf.fact;
+export function stepAlong(
+  network: Network,
+  trial: Trial,
+  { shifted }: At,
+  { names, day, changed }: Direction,
+  { coordinate, fact }: (typeof steps)[keyof typeof steps],
+): number {
+  if (changed || day) return fact;
   // A flask of its own knows nothing of the names of another vessel.
   const flask = trial.reacting?.vessel;
   const path = trial.reacting?.chemistry.path;
@@ -18,7 +30,7 @@ export function stepAlong(network: Network, trial: Trial, { shifted }: At, direc
     (name) => !flask || network.names.some((n) => n.name === name && n.chemistry?.path === path),
   );
   if (moved.length === 0) return 0;
-  return moved.some((n) => shifted.has(n)) ? stepOf.fact : flask ? stepOf.flask : stepOf.settled;
+  return moved.some((n) => shifted.has(n)) ? fact : coordinate;
 }
 
 /** A point moved along a direction. */

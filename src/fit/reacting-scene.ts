@@ -1,6 +1,6 @@
 import { compiler } from "../compile/compile.js";
 import type { Plant, Settings } from "../compile/plant.js";
-import type { Duty } from "../model/duty.js";
+import type { Duty, DutyFeed } from "../model/duty.js";
 import type { Network } from "../model/network.js";
 import type { Reacting, Trial } from "../model/trial.js";
 import { constantsOf } from "../reaction/constants.js";
@@ -54,7 +54,10 @@ export function sceneMaker(network: Network): (point: Point) => Scene | undefine
 }
 
 /** The operating point of a trial, as a duty would have it. */
-export const dutyOf = (trial: Trial, { chemistry, at, temperature, feeds, concentrations }: Reacting): Duty => ({
+export const dutyOf = (
+  trial: Trial,
+  { chemistry, at, temperature, feeds, contents, concentrations }: Reacting,
+): Duty => ({
   title: trial.title,
   at,
   path: trial.path,
@@ -63,6 +66,7 @@ export const dutyOf = (trial: Trial, { chemistry, at, temperature, feeds, concen
   with: new Map(),
   settings: new Map(),
   feeds,
+  ...(contents.size > 0 ? { contents: { at, levels: contents } } : {}),
   temperature,
   concentrations,
   report: [],
@@ -105,11 +109,18 @@ function startIn({ columns }: Plant, { chemistry, contents }: Reacting): Float64
   const n = chemistry.species.length;
   const start = new Float64Array(columns.size * n);
   for (let node = 0; node < columns.size; node++) {
-    const name = columns.nameOf(node);
-    const held =
-      contents.get(name) ?? contents.get(name.slice(0, Math.max(0, name.lastIndexOf(".")))) ?? contents.get("all");
+    const held = heldBy(contents, columns.nameOf(node));
     for (const [species, { value }] of held?.species ?? [])
       start[node * n + chemistry.species.findIndex((s) => s.name === species)] = value.of([]);
   }
   return start;
+}
+
+/** What a body holds: by the longest name that it lies under, else by `all`. */
+function heldBy(contents: Reacting["contents"], node: string): DutyFeed | undefined {
+  for (let name = node; name !== ""; name = name.slice(0, Math.max(0, name.lastIndexOf(".")))) {
+    const held = contents.get(name);
+    if (held) return held;
+  }
+  return contents.get("all");
 }

@@ -1,5 +1,4 @@
 import { checkTrial } from "../check/trial.js";
-import { unstirred } from "../compile/unstirred.js";
 import { isClosed, type Network } from "../model/network.js";
 import type { Trial } from "../model/trial.js";
 import { openText } from "../read/open.js";
@@ -24,10 +23,7 @@ export function parseTrial(text: string | Reading, options: ParseOptions = {}, h
         if (content === undefined) return undefined;
         const { document, problems } = parseNetwork(content, { ...options, path: full });
         if (!document) adopt(problems);
-        if (!document || !isClosed(document)) return undefined;
-        const name = unstirred(document.start);
-        if (name !== undefined) report("flask-body", at, { name });
-        return document;
+        return document && isClosed(document) ? document : undefined;
       },
     });
     checkTrial(undefined, trial, report);

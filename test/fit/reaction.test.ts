@@ -206,3 +206,66 @@ readings: [{at: out, noise: {floor: 0.01 mol/L}, file: data.csv, time: {column: 
     expect(parameter(found, "first.k").value * 60).toBeCloseTo(0.4, 2);
   });
 });
+
+describe("kinetics from a vessel that goes on in time", () => {
+  const whole = tank("{bypass: {value: 0 %, between: [0 %, 60 %]}}");
+  const start = (data: string, contents: string): Trial =>
+    trial(
+      `trial: Start
+format: 1
+chemistry: first.yaml
+feeds: {feed: {A: 1 mol/L ± 0.5 %}}
+${contents}readings: [{at: out, of: A, file: data.csv, time: {column: t, unit: min}, value: {column: c, unit: mol/L}}]
+`,
+      { "data.csv": data },
+    );
+  // dC/dt = (1 - C) / 10 min - k C: towards 1 / (1 + 10 k) at the rate 0.1 + k per minute.
+  const after = (t: number, k: number, from: number) => {
+    const end = 1 / (1 + 10 * k);
+    return end + (from - end) * Math.exp(-(0.1 + k) * t);
+  };
+
+  test.each([
+    ["clean", "", 0],
+    ["full", "contents: {tank: {A: 0.8 mol/L}}\n", 0.8],
+  ])("a stirred tank that starts %s", (_, contents, from) => {
+    const data = table([0.5, 1, 2, 3, 5, 8, 12, 20], (t) => after(t, 0.4, from) + 1e-4 * Math.sin(11 * t));
+    const found = fitted(whole, [start(data, contents)], { free: ["k"] });
+    const { value, interval95 } = parameter(found, "k");
+    expect(value * 60).toBeCloseTo(0.4, 2);
+    expect((interval95?.[0] ?? 1) * 60).toBeLessThan(0.4);
+    expect((interval95?.[1] ?? 0) * 60).toBeGreaterThan(0.4);
+  });
+
+  test("readings in time and analyses of the end beside one another", () => {
+    const data = table([0.5, 1, 2, 3, 5, 8, 12, 20], (t) => after(t, 0.4, 0) + 1e-3 * Math.sin(11 * t));
+    const analyses = "[{at: out, of: A, value: 0.2005 mol/L ± 0.001 mol/L}]";
+    const found = fitted(whole, [start(data, ""), steadyTrial(analyses)], { free: ["k"] });
+    expect(found.observations).toBe(9);
+    expect(parameter(found, "k").value * 60).toBeCloseTo(0.4, 2);
+  });
+
+  test("a loop of tube on a flask: what is in the tube reacts too", () => {
+    const loop = `network: Flask with a loop
+format: 1
+compartments:
+  flask: {kind: stirred, volume: 1 L, to: {pipe: 0.5 L/min}}
+  pipe: {kind: tubular, volume: 0.2 L, to: {flask: 0.5 L/min}}
+`;
+    // All of it holds the same and reacts alike: first order everywhere is exp(-k t), tube or not.
+    const looped = trial(
+      `trial: Loop
+format: 1
+chemistry: first.yaml
+vessel: loop.yaml
+contents: {all: {A: 1 mol/L}}
+readings: [{at: flask, of: A, file: data.csv, time: {column: t, unit: min}, value: {column: c, unit: mol/L}}]
+`,
+      {
+        "loop.yaml": loop,
+        "data.csv": table([0.5, 1, 2, 3], (t) => Math.exp(-0.3 * t) + 1e-4 * Math.sin(11 * t)),
+      },
+    );
+    expect(parameter(fitted(flask(), [looped], { starts: 0 }), "k").value * 60).toBeCloseTo(0.3, 3);
+  });
+});

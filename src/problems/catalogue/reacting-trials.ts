@@ -43,10 +43,4 @@ export const reactingTrialEntries = {
     says: () => "a closed vessel goes on reacting, so no analysis of it is one of a steady state",
     fix: "put the analyses into a table with their times, and name it under `readings:`",
   }),
-  "flask-body": entry<{ name: string }>({
-    severity: "error",
-    says: ({ name }) =>
-      `'${name}' is no stirred body, and a reaction in a closed vessel is followed in stirred bodies only`,
-    fix: "use `kind: stirred`, with `exchange:` or streams between several",
-  }),
 } as const;

@@ -257,7 +257,7 @@ export const trialShape = record({
     }),
   },
   contents: {
-    says: "With a `chemistry`, what the vessel held at the start, species by place: `{flask: {A: 1 mol/L}}`. Of a tracer: tracer in the vessel at the start, which is time zero (the first row, on a clock): concentrations by compartment, part or member (`chain.2`), evenly spread in each; `all` is what no other name covers. What is not named starts clean. Before the start nothing moves.",
+    says: "With a `chemistry`, what the vessel held at the start, species by place: `{flask: {A: 1 mol/L}}`; a vessel with feeds that it does not name starts with none. Of a tracer: tracer in the vessel at the start, which is time zero (the first row, on a clock): concentrations by compartment, part or member (`chain.2`), evenly spread in each; `all` is what no other name covers. What is not named starts clean. Before the start nothing moves.",
     example: "{corner: 2 g/L}",
     shape: named(either(quantity(), concentrations), "dotted"),
   },
