@@ -1,4 +1,6 @@
 import { rowMeant } from "../model/members.js";
+import type { Named } from "../model/network.js";
+import { isRatio } from "../units/dimension.js";
 import type { Rule } from "./rule.js";
 
 /** Feeds, compartments and outlets share one set of names; every stream must go to one of them. */
@@ -44,10 +46,15 @@ export const streamTargets: Rule = (network, report, { nearest }) => {
   }
 };
 
+/** A bare number from 1 on may be how far a body holds a tracer back, which a trial names in its `retained:`. */
+const mayRetain = ({ value }: Named): boolean =>
+  isRatio(value.dimension) && !value.unknown && value.uses.length === 0 && value.of([]) >= 1;
+
 /** Constants and parameters that nothing uses. Those of a part are for its own file to answer for. */
 export const unusedNames: Rule = (network, report) => {
   for (const n of network.names) {
     if (n.role === "feed-flow" || n.role === "inflow" || n.name.includes(".") || network.used.has(n.name)) continue;
+    if (mayRetain(n)) continue;
     report("unused-name", n.at, { name: n.name, role: n.role });
   }
 };

@@ -251,7 +251,7 @@ export const trialShape = record({
       },
       retained: {
         shape: named({ is: "quantity", dimension: "ratio" }, "dotted"),
-        says: "Bodies that hold the tracer back, each with its retention: the tracer sees so many times the volume of liquid (1 where it moves with the liquid). A number, or the name of a parameter or constant of the network.",
+        says: "Bodies that hold the tracer back, each with its retention: the tracer sees so many times the volume of liquid (1 where it moves with the liquid). A number, or the name of a parameter or constant of the network, which nothing else need use where it is a bare number from 1 on.",
         example: "{packing: 1.4}",
       },
     }),

@@ -6,13 +6,11 @@ import { type Outcome, pageOf } from "./page.js";
 
 /** Sets that one process looks at. */
 const chunk = 50;
-/** Refits of a set's bootstrap, by vessel. */
-const refits = 200;
 
 /** Counts on two processes how often intervals hold the truth over so many sets of each vessel and noise, and writes the page. */
 export async function coverage(root: string, work: string, sets: number): Promise<void> {
   const all = vessels((path) => readFileSync(join(root, path), "utf8"));
-  const jobs = all.flatMap((_, v) =>
+  const jobs = all.flatMap(({ refits }, v) =>
     noises.flatMap((_, n) =>
       Array.from({ length: Math.ceil(sets / chunk) }, (_, k) => [
         v,
@@ -31,7 +29,7 @@ export async function coverage(root: string, work: string, sets: number): Promis
     }
   };
   await Promise.all([next(), next()]);
-  const page = pageOf(outcomes, all, refits);
+  const page = pageOf(outcomes, all);
   writeFileSync(join(root, "shared/reference/measured/coverage.md"), page);
   console.log(`\n${page}\nwritten: shared/reference/measured/coverage.md (the build puts it into the manual)`);
 }

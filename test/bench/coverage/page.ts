@@ -29,7 +29,7 @@ export function together(outcomes: readonly Outcome[]): Outcome[] {
 const methods: readonly Method[] = ["linear", "profile", "bootstrap"];
 
 /** The page of the manual. */
-export function pageOf(outcomes: readonly Outcome[], vessels: readonly Vessel[], refits: number): string {
+export function pageOf(outcomes: readonly Outcome[], vessels: readonly Vessel[]): string {
   const rows = together(outcomes)
     .sort((a, b) => a.vessel - b.vessel || a.noise - b.noise)
     .flatMap(({ vessel, noise, tallies }) =>
@@ -47,7 +47,7 @@ export function pageOf(outcomes: readonly Outcome[], vessels: readonly Vessel[],
 
 Tests on vessels of known truth, run again and again with errors of their own: independent ones, and such as hang together from one
 reading to the next (AR(1), with the correlation of neighbours). Of 100 sets, in how many the interval holds the truth; of 500 sets a
-method that is right stays within 93.1 and 96.9 nineteen times of twenty. Bootstrap: ${refits} refits of each set. Made by
+method that is right stays within 93.1 and 96.9 nineteen times of twenty. Bootstrap: percentiles of ${vessels.map((v) => v.refits).join(" and ")} refits of each set. Made by
 \`npm run bench -- coverage\` (seeded; test/bench/coverage). Linear intervals of a tube whose front lies between two samples are no
 intervals, as \`fit\` says itself, and are not counted.
 
