@@ -31,6 +31,10 @@ describe("the README tells the truth", () => {
     const picture = (name: string) => readFileSync(`networks/tour/${name}.svg`, "utf8").trimEnd();
     const { out } = await backmix(["draw", "networks/tour/corner.yaml"]);
     expect(out.trimEnd()).toBe(picture("corner"));
+    const heat = ["simulate", "networks/heat/tank.yaml", "--duty", "networks/heat/cooled.yaml"];
+    const states = ["--states", "feed.temperature=5 degC..45 degC", "-o", "states.svg"];
+    const drawn = (await backmix([...heat, ...states])).written.get("states.svg");
+    expect(drawn?.trimEnd()).toBe(readFileSync("networks/heat/states.svg", "utf8").trimEnd());
     const { written } = await backmix(["study", "networks/tour/study.yaml"]);
     const rivals = [...written].find(([path]) => path.endsWith("figures/rivals-1.svg"))?.[1];
     expect(rivals?.trimEnd()).toBe(picture("rivals"));

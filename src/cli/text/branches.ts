@@ -1,8 +1,8 @@
 import type { nextTurns, Turn } from "../../reaction/branches.js";
 import { cautionsFor } from "../../report/cautions.js";
 import type { BranchPlot } from "../../report/study/branch-figure.js";
-import { formatNumber, formatQuantity } from "../../units/format.js";
-import { inUnit } from "../../units/unit.js";
+import { formatQuantity } from "../../units/format.js";
+import type { Unit } from "../../units/unit.js";
 import { reportedText } from "./steady.js";
 import { blocks, pairs, table, wrap } from "./table.js";
 
@@ -17,13 +17,15 @@ export function branchesText(
   const { branches, turns, left } = found;
   const { unit, name, value } = input;
   const quantity = (si: number): string => formatQuantity(si, unit);
+  // Two points on a scale differ by kelvins.
+  const difference: Unit = unit.offset === 0 ? unit : { ...unit, name: "K", factor: 1, offset: 0 };
   const points = branches.reduce((sum, b) => sum + b.length, 0);
   const rows = [...turns]
     .sort((a, b) => a.at - b.at)
     .map((turn) => [
       quantity(turn.at),
       wordsOf(turn),
-      `${turn.at < value ? "-" : "+"}${formatNumber(Math.abs(inUnit(turn.at, unit) - inUnit(value, unit)))} ${unit.name}`.trim(),
+      `${turn.at < value ? "-" : "+"}${formatQuantity(Math.abs(turn.at - value), difference)}`,
       ...figuresAt({ state: turn.state, at: turn.at, stable: undefined }).map(reportedText),
     ]);
   const right = (words: string) => ({ title: words, align: "right" as const });

@@ -42,7 +42,10 @@ export function plotBranches(plot: BranchPlot, options: CurvesOptions = {}): Plo
         xs.push(Number.NaN);
         ys.push(Number.NaN);
       });
-      return { label, x: xs, y: ys };
+      // Its name stands at the last point: the one farthest right.
+      const drawn = xs.filter((_, i) => Number.isFinite(ys[i]));
+      const turned = drawn.length > 0 && drawn[drawn.length - 1] < drawn[0];
+      return { label, x: turned ? xs.reverse() : xs, y: turned ? ys.reverse() : ys };
     };
     const lines = [
       line("stable", (s) => s === true),
