@@ -22,11 +22,18 @@ export function inputNames(
   for (const [feed, { species }] of duty.feeds) {
     for (const [name, { value }] of species) add(`${feed}.${name}`, value.dimension);
   }
+  for (const [feed, { courses }] of duty.feeds) {
+    for (const [name, course] of courses ?? []) {
+      if (course.is === "upset") add(`${feed}.${name}.to`, course.to.dimension);
+    }
+  }
   for (const [feed, { temperature }] of duty.feeds) if (temperature) add(`${feed}.temperature`, temperature.dimension);
   for (const [place, { temperature, conductance }] of duty.heat?.jackets ?? []) {
     add(`${place}.jacket`, temperature.dimension);
     add(`${place}.conductance`, conductance.dimension);
   }
+  const capacity = duty.heat && duty.chemistry?.heatCapacity;
+  if (capacity) add("heat-capacity", capacity.dimension);
   if (duty.temperature) add("temperature", duty.temperature.dimension);
   for (const { name, role, value, between } of network.names) {
     if (role !== "inflow") add(name, value.dimension, between !== undefined);

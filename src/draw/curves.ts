@@ -142,12 +142,12 @@ function panel(
   return { parts, data: { label: "", box: plot, ...axes, series } };
 }
 
-/** A limit or target across a plot, with its name above its left end. */
+/** A limit or target across a plot, with its name above its right end. */
 function levelLine({ at, label }: NonNullable<Curves["level"]>, ay: Axis, plot: Box): Svg {
   const y = ay.at(at);
   return (
     line(plot.x, y, plot.x + plot.width, y, "leader") +
-    drawCaption(caption([{ words: label, style: "look" }], plot.x + 6, y - 4))
+    drawCaption(caption([{ words: label, style: "look" }], plot.x + plot.width - 4, y - 14, "end"))
   );
 }
 

@@ -33,6 +33,8 @@ export interface StudyReport {
   readonly predictions: readonly Prediction[];
   /** What the liquid is like along the bodies that it flows through, by duty. */
   readonly along: readonly Figure[];
+  /** What leaves over time, by duty that changes in time. */
+  readonly inTime: readonly Figure[];
   /** Figures of a regulator's method, a table for each duty that declares one. */
   readonly regulated: readonly { readonly about: string; readonly lines: readonly ReportRegulated[] }[];
   readonly changes: readonly Change[];

@@ -23,6 +23,7 @@ export const sections: readonly ((report: StudyReport) => Html)[] = [
   identifiabilitySection,
   ({ residence }) => section("residence", "How long the liquid stays", residence.map(figure)),
   predictionsSection,
+  ({ inTime }) => section("in-time", "In time", inTime.map(figure)),
   changesSection,
   aimsSection,
   sweepsSection,

@@ -4,6 +4,7 @@ import type { Report } from "../problems/report.js";
 import type { ScalarNode } from "../read/tree.js";
 import { type Dimension, dimensions } from "../units/dimension.js";
 import { one } from "../units/unit.js";
+import { settleLimit } from "./feed-basis.js";
 import { resolveReportLine } from "./report-line.js";
 import { part } from "./requirements.js";
 import { emptyScope, resolveValue } from "./value.js";
@@ -28,7 +29,9 @@ export function resolveAim(node: ScalarNode, duty: Duty, report: Report): Aim | 
     return undefined;
   }
   const [, figure, sign, value] = found;
-  const line = resolveReportLine(part(node, 0, figure), speciesOf(duty), report);
+  const species = speciesOf(duty);
+  const asked = resolveReportLine(part(node, 0, figure), species, report);
+  const line = asked && settleLimit(asked, duty.chemistry, species, duty, report);
   if (!line) return undefined;
   const target = part(node, node.text.length - value.length, value);
   const known = resolveValue(target, dimensionOf(line, duty), emptyScope, report);

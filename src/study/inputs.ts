@@ -22,8 +22,8 @@ export interface Input {
 }
 
 /**
- * Every input: constants of the chemistry (`k1`, and `bulk.k1` where it holds there only), what feeds bring (`feed.A`), the
- * temperature (with heat balances `feed.temperature`, `bulk.jacket`, `bulk.conductance`, `heat-capacity`); then parameters and constants of the network and `feed.flow`. A name that both have is the chemistry's, as in `with:`.
+ * Every input: constants of the chemistry (`k1`, and `bulk.k1` where it holds there only), what feeds bring (`feed.A`, and
+ * `feed.A.to` of an upset), the temperature (with heat balances `feed.temperature`, `bulk.jacket`, `bulk.conductance`, `heat-capacity`); then parameters and constants of the network and `feed.flow`. A name that both have is the chemistry's, as in `with:`.
  */
 export function inputsOf(operation: Operation): Input[] {
   const { network, duty, values } = operation;
@@ -49,6 +49,11 @@ export function inputsOf(operation: Operation): Input[] {
   }
   for (const [feed, { species }] of duty.feeds) {
     for (const [name, { value }] of species) add(`${feed}.${name}`, "duty", value, value.of([]));
+  }
+  for (const [feed, { courses }] of duty.feeds) {
+    for (const [name, course] of courses ?? []) {
+      if (course.is === "upset") add(`${feed}.${name}.to`, "duty", course.to, course.to.of([]));
+    }
   }
   if (duty.heat) {
     for (const [feed, { temperature }] of duty.feeds) {

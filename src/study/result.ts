@@ -9,6 +9,7 @@ import type { SameCurve } from "../plan/same-curve.js";
 import type { Problem } from "../problems/problem.js";
 import type { RegulatedFigures } from "../reaction/regulated.js";
 import type { SteadyState } from "../reaction/steady.js";
+import type { Transient } from "../transient/transient.js";
 import type { Unit } from "../units/unit.js";
 import type { AimResult } from "./aim.js";
 import type { Nested } from "./nested.js";
@@ -82,6 +83,8 @@ export interface Prediction {
   /** What holds its variance; undefined where nothing is unsure. */
   readonly spread: Spread | undefined;
   readonly steady: SteadyState;
+  /** What leaves in time, where the duty changes in time. */
+  readonly course: Transient | undefined;
   /** The vessel as it is operated there. */
   readonly plant: Plant;
 }

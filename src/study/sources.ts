@@ -84,7 +84,7 @@ export function sourcesOf({ network, duty, kinetics }: Operation, fit: Fit | und
   const local = new Set([...(duty.local ?? [])].flatMap(([at, l]) => [...l.constants.keys()].map((c) => `${at}.${c}`)));
   const kindOf = (name: string): SourceKind => {
     if (constants.has(name) || local.has(name)) return "kinetics";
-    if (fed.has(name)) return "feed";
+    if (fed.has(name) || fed.has(name.replace(/\.to$/, ""))) return "feed";
     return name === "temperature" || name.endsWith(".temperature") ? "temperature" : "heat";
   };
   const sources = [

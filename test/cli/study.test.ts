@@ -136,7 +136,7 @@ aims:
   test("stand on the page, in the summary and on the terminal", async () => {
     const { out, written } = await backmix(["study", "study.yaml"], { files: asking });
     expect(out).toContain("conversion of A = 50 % at feed.flow = ");
-    expect(out).toContain("Infeasible: no feed.flow from 1 L/min to 20 L/min gives conversion of A >= 99 %");
+    expect(out).toContain("Infeasible: no feed.flow from 1 L/min to 20 L/min gives conversion of A ≥ 99 %");
     expect(written.get("made/report.html")).toContain('<section id="aims"><h2>What it takes</h2>');
     expect(written.get("made/report.html")).toContain('id="figure-sweep-1"');
     expect(written.get("made/summary.md")).toContain("**What it takes**");

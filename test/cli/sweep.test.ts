@@ -150,7 +150,7 @@ describe("sweep --aim", () => {
       ["sweep", "tank.yaml", "--duty", "peak.yaml", "--by", "size", "--aim", "P at out >= 0.26 mol/L"],
       { files },
     );
-    expect(out).toMatch(/Infeasible: no size from 10 L to 900 L gives P at out >= 0.26 mol\/L; the nearest is/);
+    expect(out).toMatch(/Infeasible: no size from 10 L to 900 L gives P at out ≥ 0.26 mol\/L; the nearest is/);
   });
 
   test("at a confidence that share of the draws meets it", async () => {

@@ -218,6 +218,7 @@ export const demo: StudyReport = {
     },
   ],
   along: [],
+  inTime: [],
   decisions: [],
   regulated: [
     {

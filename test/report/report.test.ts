@@ -131,6 +131,7 @@ const nothing: StudyReport = {
   predictions: [],
   changes: [],
   along: [],
+  inTime: [],
   decisions: [],
   regulated: [],
   sweeps: [],

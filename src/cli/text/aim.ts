@@ -1,5 +1,5 @@
 import { chance } from "../../report/digits.js";
-import { aimWords } from "../../report/study/aim-words.js";
+import { aimText as aimLine, aimWords } from "../../report/study/aim-words.js";
 import type { AimResult } from "../../study/aim.js";
 import type { Operation } from "../../study/operate.js";
 import { formatQuantity } from "../../units/format.js";
@@ -22,7 +22,7 @@ export function aimText({ network, duty }: Operation, found: AimResult, carries:
   const right = (title: string) => ({ title, align: "right" as const });
   const percent = confidence === undefined ? "" : `${Number((100 * confidence).toPrecision(4))} %`;
   return blocks(
-    `${network.title}: ${duty.title}, ${aim.text} by ${input.name}`,
+    `${network.title}: ${duty.title}, ${aimLine(aim.text)} by ${input.name}`,
     aimWords(found)
       .map((line) => wrap("  ", line))
       .join("\n"),

@@ -5,12 +5,15 @@ import { chance } from "../digits.js";
 
 const digits = 4;
 
+/** With signs as they are set. */
+export const aimText = (text: string): string => text.replace(">=", "≥").replace("<=", "≤");
+
 /** The answer to an aim in one to three sentences: where it is met, how surely, what cannot be. */
 export function aimWords(found: AimResult): string[] {
   const { aim, range, sign, confidence, crossings, met, best, impossible } = found;
   const { name, unit } = range.input;
   const say = (x: number): string => formatQuantity(x, unit, digits);
-  const target = aim.text;
+  const target = aimText(aim.text);
   const sure = confidence === undefined ? "" : ` in ${Number((100 * confidence).toPrecision(4))} % of the draws`;
   const said: string[] = [];
   if (sign === "=" ? crossings.length === 0 : met.length === 0) {

@@ -1,7 +1,7 @@
 import type { Asked } from "../../model/study.js";
 import type { Answered, StudyResult } from "../../study/result.js";
 import type { Figure, ReportAim } from "../input.js";
-import { aimWords } from "./aim-words.js";
+import { aimText, aimWords } from "./aim-words.js";
 import { plotSweep } from "./sweep-figure.js";
 
 /** "(with Second tank; by 'R-12')": what an answer is about beside the duty, where it is not the vessel as it is. */
@@ -39,7 +39,7 @@ export function reportAims(result: StudyResult): ReportAim[] {
   return result.aims.map((answer): ReportAim => {
     const { found, asked, skipped } = answer;
     return {
-      question: `${asked.aim.text} by ${asked.by.name}, ${asked.duty.title}${about(result, answer)}`,
+      question: `${aimText(asked.aim.text)} by ${asked.by.name}, ${asked.duty.title}${about(result, answer)}`,
       says: found ? aimWords(found) : [`Left out: ${skipped}.`],
     };
   });

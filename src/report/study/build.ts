@@ -25,6 +25,7 @@ import { estimate, parameterEstimate, readingUnit } from "./estimate.js";
 import { curveFigures, rivalFigures, vesselFigure } from "./figures.js";
 import { furtherWords, sameCurveWords } from "./further-words.js";
 import { identifiabilityOf } from "./identifiability.js";
+import { inTimeFigures } from "./in-time-figures.js";
 import { nestedWords } from "./nested-words.js";
 import { regulatedLines } from "./regulated-words.js";
 import { residenceFigures } from "./residence-figures.js";
@@ -45,6 +46,7 @@ export function reportOf(
   const { findings, notSupported } = findingsOf(result);
   const tested = testedFlows(result.study);
   const sweeps = sweepFigures(result);
+  const inTime = best ? inTimeFigures(result.predictions.filter((p) => p.rival === best.rival)) : [];
   const along = best ? alongFigures(result.predictions.filter((p) => p.rival === best.rival)) : [];
   const report: StudyReport = {
     title: result.study.title,
@@ -64,6 +66,7 @@ export function reportOf(
     residence,
     predictions: result.predictions.filter((p) => p.rival === best?.rival).map(predictionRow),
     along,
+    inTime,
     regulated: result.regulated.map(({ rival, duty, figures, lower }) => ({
       about: `${duty.title}${severalSurvive(result) ? ` (by '${rival.network.title}')` : ""}`,
       lines: duty.regulated ? regulatedLines(figures, duty.regulated, rival.network.units, lower) : [],
@@ -81,6 +84,7 @@ export function reportOf(
     ...(vessel ? [vessel] : []),
     ...curves,
     ...rivalCurves,
+    ...inTime,
     ...identifiability.figures,
     ...residence,
     ...along,
