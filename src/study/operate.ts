@@ -8,7 +8,6 @@ import { type Figure, figuresOf } from "../reaction/figures.js";
 import { steadyState } from "../reaction/steady.js";
 import { withTimes } from "../transient/in-time.js";
 import { sameSide } from "./draws.js";
-import { withTimes } from "./in-time.js";
 
 /** A duty in a network: what its reported figures are a function of. */
 export interface Operation {

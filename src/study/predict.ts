@@ -2,7 +2,7 @@ import type { Duty } from "../model/duty.js";
 import { predict } from "../reaction/prediction.js";
 import { withTimes } from "../transient/in-time.js";
 import { betterIs } from "./direction.js";
-import { overTime, withTimes } from "./in-time.js";
+import { overTime } from "./in-time.js";
 import { plantOf } from "./operate.js";
 import type { Bounds, Prediction, Ranked } from "./result.js";
 import type { Sample } from "./sample.js";
@@ -18,7 +18,7 @@ export function predictDuty(ranked: Ranked, { operation, rows, values }: Sample)
   const figures = withTimes(plant, duty, steady);
   const spreads = spreadsOf(operation, ranked.fit, rows, values);
   const course = overTime(plant, duty);
-  return withTimes(plant, duty, figures).map((f, k): Prediction => {
+  return figures.map((f, k): Prediction => {
     const b = bounds[k];
     const within: Bounds | undefined = b && {
       segregated: b.segregated.value,

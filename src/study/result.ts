@@ -9,9 +9,9 @@ import type { SameCurve } from "../plan/same-curve.js";
 import type { Problem } from "../problems/problem.js";
 import type { RegulatedFigures } from "../reaction/regulated.js";
 import type { SteadyState } from "../reaction/steady.js";
-import type { Transient } from "../transient/transient.js";
 import type { Unit } from "../units/unit.js";
 import type { AimResult } from "./aim.js";
+import type { InTime } from "./in-time.js";
 import type { Nested } from "./nested.js";
 import type { Standing } from "./rank.js";
 import type { Residence } from "./residence.js";
@@ -84,7 +84,7 @@ export interface Prediction {
   readonly spread: Spread | undefined;
   readonly steady: SteadyState;
   /** What leaves in time, where the duty changes in time. */
-  readonly course: Transient | undefined;
+  readonly course: InTime | undefined;
   /** The vessel as it is operated there. */
   readonly plant: Plant;
 }

@@ -53,7 +53,7 @@ test("how high an upset may be for a time off spec: the aim put back gives it", 
 test("the picture runs from the steady state before the upset to where it is washed out", () => {
   const { plant } = compile(network);
   const run = plant && overTime(plant, duty);
-  const values = run?.outlets[0].values ?? [];
+  const values = run?.run.outlets[0].values ?? [];
   expect(values[0]).toBeCloseTo(1000, 6);
   expect(values[values.length - 1]).toBeCloseTo(1000, 0);
   expect(Math.max(...values) / 1000).toBeCloseTo(1 + 1 - Math.exp(-0.4), 2);
