@@ -27,9 +27,9 @@ describe("the demo study", () => {
     expect(run.summary).toMatch(/^# .*\n\n- \*\*What is wrong\*\*: /);
   });
 
-  test("draws the vessel, both tests, residuals, rivals, profiles, regions, residence times and a sweep", () => {
+  test("draws the vessel, both tests, residuals, rivals, profiles, regions, residence times, a tube and a sweep", () => {
     const wanted =
-      "vessel fit-1 residuals-1 fit-2 residuals-2 rivals-1 rivals-2 profiles regions exit-age left-and-inside intensity sweep-1";
+      "vessel fit-1 residuals-1 fit-2 residuals-2 rivals-1 rivals-2 profiles regions exit-age left-and-inside intensity along-1 sweep-1";
     expect(run.figures).toEqual(wanted.split(" "));
   });
 

@@ -78,13 +78,10 @@ describe("one finding a place, at the place", () => {
 });
 
 describe("what this version does not honour is refused", () => {
-  test("forms of a duty and of a chemistry", () => {
-    const duty =
-      "duty: d\nformat: 1\nfeeds: {feed: {A: {from: 1 mol/L, to: 2 mol/L}, temperature: 25 degC}}\nheat: adiabatic\n";
-    expect(check(duty).findings).toEqual(["not-yet A", "not-yet temperature", "not-yet heat"]);
-    const chemistry =
-      "chemistry: c\nformat: 1\nspecies: {A: {}}\nreactions: [{equation: A -> A, rate: A, heat: 1 kJ/mol}]\nmedium: {}\n";
-    expect(check(chemistry).findings).toEqual(["not-yet heat", "not-yet medium"]);
+  test("a flow of a duty that changes in time", () => {
+    const duty = (flow: string): string => `duty: d\nformat: 1\nflows: {feed: ${flow}}\nfeeds: {feed: {A: 1 mol/L}}\n`;
+    expect(check(duty("1 L/min")).findings).toEqual([]);
+    expect(check(duty("{file: q.csv}")).findings).toEqual(["not-yet feed"]);
   });
 });
 
