@@ -73,8 +73,6 @@ export function refitsOf(network: Network, trials: readonly Trial[], options: Re
   const x = Float64Array.from(setup.coordinates, (c) => c.fromSi(options.values[c.name]));
   const sum = problem.evaluate(x)?.ofAll ?? Number.POSITIVE_INFINITY;
   const settled = settle(setup, weights, problem, { x, sum, converged: true, reached: 1 }, unwatched);
-  // What a model makes of a trial that comes again it makes now, so that no refit is the first to ask.
-  for (let again = 0; again < 2; again++) problemWith(setup, weights.weight).evaluate(x);
   return settled && new Resampler(settled, options.resampling, options.seed);
 }
 
