@@ -63,7 +63,7 @@ export async function startWatching(
   const draw = (file: Watched, tries: number): void => {
     const inputs = new Inputs(io);
     inputs.allowOutside = options.allowOutside;
-    const view = viewOf(file.path, inputs);
+    const view = viewOf(file.path, inputs, paths);
     const found = new Set([file.path, ...inputs.paths].filter((p) => inputs.read(p) !== undefined));
     if (tries > 0 && [...file.found].some((p) => inputs.paths.includes(p) && !found.has(p))) {
       later(file, missingWait, tries - 1);
@@ -103,9 +103,9 @@ export async function startWatching(
   };
 }
 
-function viewOf(path: string, inputs: Inputs): LiveView {
+function viewOf(path: string, inputs: Inputs, beside: readonly string[]): LiveView {
   const text = inputs.text(path);
-  if (typeof text === "string") return liveView(text, inputs.options(path));
+  if (typeof text === "string") return liveView(text, { ...inputs.options(path), beside });
   return { kind: undefined, title: path, figures: [], problems: [text] };
 }
 

@@ -1,5 +1,7 @@
+import type { Duty } from "../../model/duty.js";
 import { parseAny } from "../../parse/any.js";
 import { parseChemistry } from "../../parse/chemistry.js";
+import { parseDuty } from "../../parse/duty.js";
 import { parseNetwork } from "../../parse/network.js";
 import { type Parsed, type ParseOptions, readDocument } from "../../parse/parsed.js";
 import { parseStudy } from "../../parse/study.js";
@@ -9,6 +11,7 @@ import { hasErrors } from "../../problems/report.js";
 import { documentKind } from "../../read/shape.js";
 import type { Figure } from "../input.js";
 import { chemistryFigures } from "./chemistry-figures.js";
+import { dutyFigures } from "./duty-figures.js";
 import { networkFigures } from "./network-figures.js";
 import { studyFigures } from "./study-figures.js";
 import { trialFigures } from "./trial-figures.js";
@@ -23,12 +26,19 @@ export interface LiveView {
   readonly problems: readonly Problem[];
 }
 
+export interface LiveOptions extends ParseOptions {
+  readonly path: string;
+  /** Files that are watched too: a duty is shown in the networks among them. */
+  readonly beside?: readonly string[];
+}
+
 /** Draws any document. Never throws on bad input; fast, nothing is fitted. */
-export function liveView(text: string, options: ParseOptions & { readonly path: string }): LiveView {
+export function liveView(text: string, options: LiveOptions): LiveView {
   const reading = readDocument(text, options.path);
   const only = reading.tree && documentKind(reading.tree);
   if (only === "study") return drawn(options.path, "study", parseStudy(reading, options), studyFigures);
   if (only === "chemistry") return drawn(options.path, "chemistry", parseChemistry(reading, options), chemistryFigures);
+  if (only === "duty") return ofDuty(parseDuty(reading, options), options);
   const { kind, network, problems } = parseAny(text, options);
   const bare = { kind, title: options.path, figures: [], problems };
   if (hasErrors(problems)) return bare;
@@ -40,6 +50,25 @@ export function liveView(text: string, options: ParseOptions & { readonly path: 
     return { ...bare, title: document.title, figures: trialFigures(document, vessel) };
   }
   return bare;
+}
+
+/** A duty in the vessels beside it; alone, its rate laws in a flask. */
+function ofDuty({ document, problems }: Parsed<Duty>, { path, beside = [], ...options }: LiveOptions): LiveView {
+  const bare = { kind: "duty", title: document?.title ?? path, figures: [], problems };
+  if (!document || hasErrors(problems)) return bare;
+  const vessels = beside.flatMap((file) => {
+    const content = file === path ? undefined : options.read?.(file);
+    const text = content === undefined || typeof content === "string" ? content : new TextDecoder().decode(content);
+    if (text === undefined) return [];
+    const reading = readDocument(text, file);
+    if (!reading.tree || documentKind(reading.tree) !== "network") return [];
+    return parseNetwork(reading, { ...options, path: file }).document ?? [];
+  });
+  if (vessels.length === 0) {
+    return { ...bare, figures: document.chemistry ? chemistryFigures(document.chemistry) : [] };
+  }
+  const found = dutyFigures(document, vessels);
+  return { ...bare, figures: found.figures, problems: [...problems, ...found.problems] };
 }
 
 function drawn<T extends { readonly title: string }>(
