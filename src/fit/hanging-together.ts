@@ -70,7 +70,7 @@ export function hangingTogether(
 /** (sum w^2)^2 / sum w^4 of the weights with which readings make an unknown. */
 function participation(basis: readonly Float64Array[], ways: readonly Float64Array[], j: number): number {
   let [square, fourth] = [0, 0];
-  for (let i = 0; i < basis[0].length; i++) {
+  for (let i = 0; i < (basis[0]?.length ?? 0); i++) {
     let w = 0;
     for (let k = 0; k < basis.length; k++) w += ways[k][j] * basis[k][i];
     square += w * w;

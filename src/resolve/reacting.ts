@@ -59,14 +59,19 @@ export function resolveReacting(
   if (!chemistry) return undefined;
   if (chemistry.needsTemperature && !child(tree, "temperature"))
     report("temperature-missing", node.at, { chemistry: chemistry.title });
-  const feeds = resolveFeeds(child(tree, "feeds"), chemistry, noFiles, report);
-  const contents = resolveFeeds(child(tree, "contents"), chemistry, noFiles, report, "place");
+  let good = true;
+  const tell: Report = (code, at, data, also) => {
+    good = false;
+    report(code, at, data, also);
+  };
+  const feeds = resolveFeeds(child(tree, "feeds"), chemistry, noFiles, tell);
+  const contents = resolveFeeds(child(tree, "contents"), chemistry, noFiles, tell, "place");
   const settled = settleFeeds(chemistry, feeds, contents, report);
   if (!settled) return undefined;
   const mixtures = [...settled.feeds.values(), ...settled.contents.values()];
   // What the day set otherwise may start what the file's constants do not.
   const brought = { at: node.at, mixtures, constants: new Map(), temperature: temperature?.of([]) };
-  if (!child(tree, "with")) neverStarting(chemistry, brought, report);
+  if (good && !child(tree, "with")) neverStarting(chemistry, brought, report);
   const own = vessel && files.flask(vessel.path, vessel.at);
   return {
     chemistry,

@@ -72,6 +72,38 @@ describe("kinetics from a flask", () => {
     expect((e.standardError ?? 0) / 1e3).toBeCloseTo(Math.sqrt((variance * sum(0, 0)) / determinant), 4);
   });
 
+  test("where nothing can react, the fit says that it can tell nothing", () => {
+    const lone = flaskTrial(
+      25,
+      table(times, (t) => 0.9 + 0.1 * Math.exp(-t)),
+      "{A: 1 mol/L}",
+    );
+    const { fit: found } = fit(flask(), [lone]);
+    expect(found?.findings.map((f) => f.code)).toContain("cannot-tell");
+    expect(found?.parameters.every((p) => p.standardError === undefined)).toBe(true);
+  });
+
+  test("units change nothing: grams for moles, seconds for minutes", () => {
+    const data = times.map((t) => [t, left(t, 298.15, 2, 50) + 0.01 * Math.sin(7 * t)]);
+    const one = (unit: string, time: string, by: number, pace: number): Trial =>
+      trial(
+        `trial: Flask
+format: 1
+chemistry: second.yaml
+vessel: flask.yaml
+temperature: 25 degC
+contents: {flask: {A: ${by} ${unit}, B: 1.2 mol/L}}
+readings: [{at: flask, of: A, file: data.csv, time: {column: t, unit: ${time}}, value: {column: c, unit: ${unit}}}]
+`,
+        { "data.csv": `t,c\n${data.map(([t, c]) => `${t * pace},${c * by}`).join("\n")}\n` },
+      );
+    const [moles, grams] = [one("mol/L", "min", 1, 1), one("g/L", "s", 88, 60)].map((t) =>
+      parameter(fitted(flask(), [t], { free: ["k25"] }), "k25"),
+    );
+    expect(grams.value / moles.value).toBeCloseTo(1, 7);
+    expect((grams.standardError ?? 0) / (moles.standardError ?? 1)).toBeCloseTo(1, 6);
+  });
+
   test("oxygen demand after days in a bottle: the certified values of NIST's BoxBOD", () => {
     // Box, Hunter & Hunter, Statistics for Experimenters, Wiley 1978, pp. 483-487: y = b1 (1 - exp(-b2 t)), t in days. What
     // could be used up (b1) is an open scale here, 1 g/L at the start.
