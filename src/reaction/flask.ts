@@ -41,7 +41,7 @@ export function followFlask(
 ): FlaskCourse | undefined {
   const n = flask.chemistry.species.length;
   const length = flask.start.length;
-  const scale = scaleOf(flask.start, n);
+  const scale = scaleOf(flask);
   const here = bodyOf(flask, scale);
   const sides = moves.map(({ above, below }) => [bodyOf(above, scale), bodyOf(below, scale)] as const);
   const start = new Float64Array(length * (1 + moves.length));
@@ -120,12 +120,23 @@ function bodyOf({ plant, chemistry, constants }: Flask, scale: Float64Array): Bo
   };
 }
 
-/** Each species by its own largest start; one that is not there at the start by the largest of all. */
-function scaleOf(start: Float64Array, n: number): Float64Array {
-  const scale = new Float64Array(n);
+/**
+ * Each species by its own largest start, but by no less than a millionth of the largest among those that reactions link it with
+ * (which are counted alike); one that is not there at the start by that largest.
+ */
+function scaleOf({ start, chemistry: { species, reactions } }: Flask): Float64Array {
+  const n = species.length;
+  const own = new Float64Array(n);
   start.forEach((c, k) => {
-    scale[k % n] = Math.max(scale[k % n], c);
+    own[k % n] = Math.max(own[k % n], c);
   });
-  const largest = scale.reduce((most, c) => Math.max(most, c), 0) || 1;
-  return scale.map((c) => c || largest);
+  const linked = own.slice();
+  for (let pass = 0; pass < n; pass++) {
+    for (const { makes } of reactions) {
+      const most = makes.reduce((m, { species: i }) => Math.max(m, linked[i]), 0);
+      for (const { species: i } of makes) linked[i] = most;
+    }
+  }
+  const largest = own.reduce((most, c) => Math.max(most, c), 0) || 1;
+  return own.map((c, i) => (c > 0 ? Math.max(c, 1e-6 * linked[i]) : linked[i] || largest));
 }
