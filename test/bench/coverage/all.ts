@@ -10,8 +10,8 @@ const chunk = 50;
 /** Counts on two processes how often intervals hold the truth over so many sets of each vessel and noise, and writes the page. */
 export async function coverage(root: string, work: string, sets: number): Promise<void> {
   const all = vessels((path) => readFileSync(join(root, path), "utf8"));
-  const jobs = all.flatMap(({ refits }, v) =>
-    noises.flatMap((_, n) =>
+  const jobs = all.flatMap(({ refits, errors }, v) =>
+    errors.flatMap((n) =>
       Array.from({ length: Math.ceil(sets / chunk) }, (_, k) => [
         v,
         n,

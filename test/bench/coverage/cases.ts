@@ -14,6 +14,8 @@ export interface Vessel {
   /** Parameters whose intervals are held against the truth. */
   readonly asked: readonly string[];
   readonly methods: readonly Method[];
+  /** Indices of `noises`. */
+  readonly errors: readonly number[];
   /** Refits of a set's bootstrap. */
   readonly refits: number;
   /** Starts of every fit besides the file's own values. */
@@ -71,6 +73,7 @@ const smooth: Vessel = {
   methods: ["linear", "profile", "bootstrap"],
   starts: 0,
   refits: 200,
+  errors: [0, 1, 2],
   trial: (seed, noise) =>
     synthetic(corner, cornerTruth, {
       injection: "{at: feed, pulse: 50 g}",
@@ -103,6 +106,7 @@ export function p1(text: (path: string) => string): Vessel {
     methods: ["profile", "bootstrap"],
     starts: 8,
     refits: 100,
+    errors: [0, 1],
     trial(seed, noise) {
       const error = errors(seed, 6.295e-4, noise);
       const rows = Array.from(time, (t, i) => `${t / 60},${exact[i] + 0.002 + (2e-6 * t) / 60 + error()}\n`);
