@@ -14,6 +14,7 @@ import { placeNames, streamTargets, unusedNames } from "./names.js";
 import { writtenZeros } from "./nothing.js";
 import type { Rule } from "./rule.js";
 import { splits } from "./splits.js";
+import { spreadsNamed } from "./spreads.js";
 import { statedVolume } from "./stated-volume.js";
 import { checkSubjects } from "./statements.js";
 import { streamsTwice } from "./streams-twice.js";
@@ -36,6 +37,7 @@ const flowRules: readonly Rule[] = [
 
 const otherRules: readonly Rule[] = [
   finiteValues,
+  spreadsNamed,
   exchanges,
   parameterBounds,
   requirements,

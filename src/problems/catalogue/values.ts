@@ -42,6 +42,11 @@ export const valueEntries = {
         ? `did you mean \`${d.nearest}\`?`
         : "use one of exp, log, log10, sqrt, abs, min, max, tanh, step-up; to multiply, write `*` before the bracket",
   }),
+  "spread-unnamed": entry<{ what: string }>({
+    severity: "error",
+    says: ({ what }) => `the \`±\` of ${what} would be carried into no interval: only what has a name may vary`,
+    fix: "give the value a name, such as `constants: {tank-volume: 100 L ± 2 %}`, and write the name here",
+  }),
   "bad-uncertainty": entry<FaultData["bad-uncertainty"]>({
     severity: "error",
     says: (d) => d.why,
