@@ -49,6 +49,7 @@ export async function simulateDuty(
       `simulate: ${together.toLocaleString("en")} nodes solved together, balances within ${formatNumber(missing, 1)}`,
     ),
   );
+  progress.say("simulate: looking for other steady states");
   const states = duty.chemistry ? searched(plant, duty) : undefined;
   progress.done();
   const { state: steady } = prediction;

@@ -24,9 +24,10 @@ export interface Range {
   readonly temperatures: readonly [number, number] | undefined;
 }
 
-/** How many starts of each sort; fewer where a start costs a walk through bodies. */
+/** How many starts of each sort; fewer where every step is a walk through bodies, still fewer where these have an inside of their own. */
 const many = { temperatures: 48, mixtures: 24, patterns: 32 };
-const few = { temperatures: 16, mixtures: 8, patterns: 8 };
+const few = { temperatures: 8, mixtures: 2, patterns: 4 };
+const fewest = { temperatures: 8, mixtures: 0, patterns: 6 };
 /** Nodes of a group that is followed in time where Newton's method does not get on. */
 const mostFollowed = 60;
 /** Two states that are nearer to one another than this, scaled, are one. */
@@ -54,7 +55,7 @@ export function groupStates(
   add(first, result, true);
   for (const start of startsFor(balance, range)) {
     const y = start.slice();
-    add(y, solveNewtonFrom(balance, y));
+    add(y, solveNewtonFrom(balance, y, balance.onlyCells ? 40 : 25));
   }
   return found.map((f) => ({ ...f, mode: slowestMode(balance, f.y) })).sort((a, b) => size(a.y) - size(b.y));
 }
@@ -84,7 +85,7 @@ export function settleGroup(balance: GroupBalance, y: Float64Array, byTime: bool
     if (second.converged) return second;
   }
   for (const start of startsFor(balance, range())) {
-    const third = solveNewtonFrom(balance, start);
+    const third = solveNewtonFrom(balance, start, balance.onlyCells ? 40 : 25);
     if (!third.converged || !start.every(Number.isFinite)) continue;
     y.set(start);
     return third;
@@ -94,7 +95,7 @@ export function settleGroup(balance: GroupBalance, y: Float64Array, byTime: bool
 
 function* startsFor(balance: GroupBalance, { cell, temperatures: between }: Range): Generator<Float64Array> {
   const { count, size: n, meanTime } = balance;
-  const { temperatures, mixtures, patterns } = balance.onlyCells ? many : few;
+  const { temperatures, mixtures, patterns } = balance.onlyCells ? many : balance.slow ? fewest : few;
   const mixed = balance.mixed();
   if (!mixed) return;
   const pool: Float64Array[] = [];

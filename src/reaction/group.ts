@@ -1,6 +1,6 @@
 import { Part, type Plant } from "../compile/plant.js";
 import { type BlockMatrix, block, blockMatrix, solveBlocks } from "./block-matrix.js";
-import { bodyAt } from "./bodies.js";
+import { bodyAt, hasInside } from "./bodies.js";
 import type { Conditions } from "./conditions.js";
 import type { BlockSystem } from "./newton.js";
 
@@ -28,6 +28,8 @@ export interface GroupBalance extends BlockSystem {
   readonly meanTime: number;
   /** True where there is nothing but cells and joints. */
   readonly onlyCells: boolean;
+  /** True where a body solves for what is inside it at every step: dispersion, pockets. */
+  readonly slow: boolean;
 }
 
 /**
@@ -92,6 +94,7 @@ export function groupBalance(
     spaceTime: tau,
     meanTime: held / entering,
     onlyCells: part.every((p) => p === Part.Cell || p === Part.Joint),
+    slow: nodes.some((node) => hasInside(plant, node)),
     memory: tau.map((t, k) => (part[k] === Part.Cell ? t : 0)),
     residual(y, f) {
       for (let k = 0; k < count; k++) {

@@ -57,9 +57,9 @@ export function solveNewton(system: BlockSystem, y: Float64Array): NewtonResult 
 }
 
 /** The same from one of many starts: given up where it does not get on. */
-export const solveNewtonFrom = (system: BlockSystem, y: Float64Array): NewtonResult => {
+export const solveNewtonFrom = (system: BlockSystem, y: Float64Array, steps: number): NewtonResult => {
   const eliminated = eliminating(system);
-  return iterate(eliminated, workspace(eliminated), y, 40, byElimination);
+  return iterate(eliminated, workspace(eliminated), y, steps, byElimination);
 };
 
 /** The same for one that solves for its steps itself, to an accuracy that tightens as the residual falls. */

@@ -88,6 +88,8 @@ function onward(plant: Plant, { heat }: Conditions, way: Way, group: Int32Array,
     if (heat) for (const node of bodies) left.add(`what happens inside '${plant.columns.nameOf(node)}'`);
     return [{ walk, reached, growth: group.length > 1 || bodies.length > 0 ? [...growth, undefined] : growth }];
   }
+  const slow = [...group].find((node) => hasInside(plant, node));
+  if (slow !== undefined) left.add(`from more than a few starts, the circle through '${plant.columns.nameOf(slow)}'`);
   return states.map((state, k) => {
     const own = k === states.length - 1 ? walk : walk.fork();
     own.take(group, state);
