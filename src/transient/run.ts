@@ -219,7 +219,8 @@ export class Run {
     for (const node of nodes) {
       if (!(scene.plant.columns.inflow[node] > 0)) continue;
       for (const source of scene.blend(node).keys()) {
-        if (!own.has(source) && source < scene.sort.length && !scene.looped[source]) sources.add(source);
+        const before = source < scene.sort.length && scene.stage[source] < scene.stage[node];
+        if (!own.has(source) && source < scene.sort.length && (before || !scene.looped[source])) sources.add(source);
       }
     }
     return [...sources].map((source) => this.signal(source));

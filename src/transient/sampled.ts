@@ -7,6 +7,12 @@ const absolute = 1e-12;
 /** No piece is cut shorter than this part of the unit of time. */
 const shortest = 1e-7;
 
+/**
+ * What comes of other polynomials jumps from one to the next by as much as they may miss: so many tolerances, which do not fall
+ * however short a piece is, are let be.
+ */
+const nearly = 10;
+
 /** What a sampled signal is of. */
 export interface Source {
   /** Writes the mixture at t; false where there is none: it then reads NaN. */
@@ -75,6 +81,7 @@ export class Sampled implements Signal {
     const stop = source.breaks[this.nextBreak] ?? Number.POSITIVE_INFINITY;
     const least = Math.max(shortest * source.unit, 1e-12 * from);
     let length = Math.min(this.hint, source.longest(from));
+    let before = Number.POSITIVE_INFINITY;
     for (;;) {
       let to = from + length;
       if (to >= stop || stop - to < 0.1 * length) to = stop;
@@ -84,7 +91,9 @@ export class Sampled implements Signal {
         return source.evaluate(at, p === 0 ? 1 : -1, row);
       });
       const error = good ? this.error(from, span) : Number.NaN;
-      if (!(error > 1) || span <= least) {
+      const smooth = !(error < nearly && error > before / 4);
+      before = error;
+      if (!(error > 1) || span <= least || !smooth) {
         if (!good) for (const row of rows) row.fill(Number.NaN);
         this.pieces.add(from, span, (p, into, at) => into.set(rows[p], at));
         const grown = error > 0 ? 0.9 * error ** (-1 / basis.places.length) : 4;

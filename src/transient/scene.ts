@@ -53,20 +53,28 @@ export function sceneOf(plant: Plant, { size: width, reactionsAt }: Conditions):
   };
 }
 
-/** Bodies that are read off what entered them wait for what comes before, outside circles; what follows them waits for them. */
+/**
+ * Bodies that are read off what entered them wait for what comes before, outside circles; what follows them waits for them. So
+ * does what follows a circle that holds such a body: the short steps there are its own.
+ */
 function staged({ plant, into, sort, looped }: Scene["net"], follow: Scene["follow"]): Pick<Scene, "stage" | "stages"> {
   const stage = new Int32Array(sort.length);
+  const after = new Int32Array(sort.length);
+  const readOff = (i: number): boolean => follow[i]?.is === "parcels" && sort[i] !== "joint";
   for (const group of plant.groups) {
     const inside = new Set(group);
     let first = 0;
     for (const i of group) {
       for (let e = into.start[i]; e < into.start[i + 1]; e++) {
         const before = plant.from[into.edges[e]];
-        if (!inside.has(before)) first = Math.max(first, stage[before]);
+        if (!inside.has(before)) first = Math.max(first, after[before]);
       }
     }
-    for (const i of group)
-      stage[i] = first + (!looped[i] && follow[i]?.is === "parcels" && sort[i] !== "joint" ? 1 : 0);
+    const slow = group.some((i) => looped[i] && readOff(i));
+    for (const i of group) {
+      stage[i] = first + (!looped[i] && readOff(i) ? 1 : 0);
+      after[i] = stage[i] + (slow ? 1 : 0);
+    }
   }
   return { stage, stages: stage.reduce((m, s) => Math.max(m, s), 0) + 1 };
 }

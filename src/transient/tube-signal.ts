@@ -8,6 +8,9 @@ import type { Start } from "./start.js";
 /** Pieces of what enters that one piece of what leaves may stand for. */
 const piecesAtOnce = 4;
 
+/** Mixtures no further apart, scaled, are one. */
+const alike = 1e-14;
+
 /** What is asked of a tube. */
 export interface TubeAsk {
   readonly scene: Scene;
@@ -49,7 +52,7 @@ export function tubeSignal({ scene, node, delay, inlet, start, basis, breaks, lo
       }
       inlet.read(then, side, entered, 0);
       // Much of what enters is constant: one parcel stands for all.
-      if (entered.every((x, i) => x === last.entered[i])) {
+      if (entered.every((x, i) => Math.abs(x - last.entered[i]) <= alike)) {
         out.set(last.left);
         return last.good;
       }
