@@ -7,6 +7,7 @@ import { collector } from "../problems/report.js";
 import { networkSettings } from "../reaction/conditions.js";
 import { temperatureUnit } from "../reaction/figures.js";
 import { speciesUnits } from "../reaction/species-units.js";
+import { dutyCautions } from "../report/duty-cautions.js";
 import { plotTransient } from "../report/study/transient-figure.js";
 import { type DiversionWindow, diversionWindows } from "../study/diversion.js";
 import { drawsOf } from "../study/draws-of.js";
@@ -87,6 +88,7 @@ export async function simulateTransient(
       ok: !stopped,
       duty: duty.title,
       ...transientJson(plant, duty, run, figures, clock),
+      cautions: dutyCautions(duty).map((c) => c.says),
       ...(diverted ? { diversion: diversionJson(plant, diverted.found, clock.unit) } : {}),
       ...(output === undefined ? {} : { written: output }),
     },

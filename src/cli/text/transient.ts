@@ -2,6 +2,7 @@ import type { Plant } from "../../compile/plant.js";
 import type { Duty } from "../../model/duty.js";
 import { temperatureUnit } from "../../reaction/figures.js";
 import { speciesUnits } from "../../reaction/species-units.js";
+import { dutyCautions } from "../../report/duty-cautions.js";
 import type { TransientFigure } from "../../transient/figures.js";
 import { passageOf } from "../../transient/passage.js";
 import type { Transient } from "../../transient/transient.js";
@@ -10,7 +11,7 @@ import { formatNumber, formatQuantity } from "../../units/format.js";
 import { inUnit } from "../../units/unit.js";
 import type { Clock } from "../times.js";
 import { reportedText } from "./steady.js";
-import { blocks, pairs, table } from "./table.js";
+import { blocks, pairs, table, wrap } from "./table.js";
 
 const starts = { steady: "from the steady state before the change", contents: "from what the duty says is there" };
 
@@ -33,6 +34,9 @@ export function transientText(
     run.stopped ? "" : passages(plant, duty, run, clock, looks),
     figuresText(plant, duty, run, figures, clock),
     balanceText(run),
+    dutyCautions(duty)
+      .map((c) => wrap("  caution  ", c.says))
+      .join("\n"),
   );
 }
 
