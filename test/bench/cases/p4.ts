@@ -17,7 +17,11 @@ export const p4: Bench = {
     };
     add(out("own"), [{ name: "integrate, again", own: true, command: own("p4", folder, out("own")) }]);
     add(out("transient"), [
-      { name: "transient, a vessel and a chemistry", own: true, command: own("p4-transient", folder, out("transient")) },
+      {
+        name: "transient, a vessel and a chemistry",
+        own: true,
+        command: own("p4-transient", folder, out("transient")),
+      },
     ]);
     const cvode = (name: string, at: string, ...more: string[]): void =>
       add(at, peers.compiled(name, "p4_cvode", folder, "1e-6", "1e-10", at, "20", ...more));
