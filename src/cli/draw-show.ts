@@ -7,12 +7,14 @@ import {
   type Shown,
   shownOfFlow,
   shownOfSpecies,
+  shownTemperature,
   withTones,
 } from "../draw/shown.js";
 import type { Network } from "../model/network.js";
 import { parseDuty } from "../parse/duty.js";
 import { collector } from "../problems/report.js";
 import { networkSettings } from "../reaction/conditions.js";
+import { temperatureUnit } from "../reaction/figures.js";
 import { speciesUnits } from "../reaction/species-units.js";
 import { steadyState } from "../reaction/steady.js";
 import { nearest } from "../text/nearest.js";
@@ -53,6 +55,7 @@ export function sheetWith(network: Network, { show, duty: file, set }: ShowOptio
   const ofSpecies = {
     names: state.species,
     show: (what: (typeof quantitiesOfSpecies)[number], k: number) => shownOfSpecies(plant, state, what, k, units[k]),
+    temperature: state.temperatures && shownTemperature(plant, state.temperatures, temperatureUnit(duty)),
   };
   const sheet = toned(flowSheet(plant), show, (name) => shownOfFlow(plant, name), ofSpecies);
   return { sheet, converged: state.converged };
@@ -61,6 +64,8 @@ export function sheetWith(network: Network, { show, duty: file, set }: ShowOptio
 interface OfSpecies {
   readonly names: readonly string[];
   readonly show: (what: (typeof quantitiesOfSpecies)[number], species: number) => Shown;
+  /** Where heat is balanced. */
+  readonly temperature: Shown | undefined;
 }
 
 function toned(
@@ -73,12 +78,17 @@ function toned(
   const wanted = show.trim().replace(/\s+/g, " ");
   const flow = quantitiesOfFlow.find((q) => q === wanted);
   if (flow) return withTones(sheet, ofFlow(flow));
+  if (wanted === "temperature") {
+    if (ofSpecies?.temperature) return withTones(sheet, ofSpecies.temperature);
+    throw new UsageError("--show temperature needs a duty that balances heat: name one with --duty FILE");
+  }
   const what = quantitiesOfSpecies.find((q) => wanted.startsWith(`${q} `));
   if (what && !ofSpecies) throw new UsageError(`--show '${wanted}' needs a reaction: name one with --duty FILE`);
   const species = what && ofSpecies ? ofSpecies.names.indexOf(wanted.slice(what.length + 1)) : -1;
   if (what && ofSpecies && species >= 0) return withTones(sheet, ofSpecies.show(what, species));
   const names = [
     ...quantitiesOfFlow,
+    ...(ofSpecies?.temperature ? ["temperature"] : []),
     ...(ofSpecies?.names ?? []).flatMap((s) => quantitiesOfSpecies.map((q) => `${q} ${s}`)),
   ];
   const near = nearest(wanted, names);

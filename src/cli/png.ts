@@ -1,5 +1,6 @@
 import { existsSync, readFileSync } from "node:fs";
 import { createRequire } from "node:module";
+import { withRaisedDigits } from "../svg/raised.js";
 import type { Svg } from "../svg/svg.js";
 
 /** Pixels per px of the drawing: sharp on paper and on dense screens. */
@@ -24,7 +25,7 @@ async function load(): Promise<Renderer> {
   await initWasm(readFileSync(createRequire(import.meta.url).resolve("@resvg/resvg-wasm/index_bg.wasm")));
   const fontBuffers = ["Regular", "Bold"].map((style) => readFileSync(fontFile(`LiberationSans-${style}.ttf`)));
   const font = { fontBuffers, defaultFontFamily: face, sansSerifFamily: face };
-  return (svg) => new Resvg(svg, { font, fitTo: { mode: "zoom", value: zoom } }).render().asPng();
+  return (svg) => new Resvg(withRaisedDigits(svg), { font, fitTo: { mode: "zoom", value: zoom } }).render().asPng();
 }
 
 /** Beside the sources or beside the bundle, whose files lie one or two folders under the package. */

@@ -78,7 +78,10 @@ function addDraw(root: Command, { perform, inputs, io }: Stage): void {
     "draw networks/demo/bypass.yaml --compare networks/demo/both.yaml -o moved.svg",
   ])
     .option("-o, --output <file>", "write to F.svg, F.png or F.html; else the SVG goes to standard output")
-    .option("--show <quantity>", "as tone: mean age, life expectancy, space time, concentration of A, production of A")
+    .option(
+      "--show <quantity>",
+      "as tone: mean age, life expectancy, space time, concentration of A, production of A, temperature",
+    )
     .option("--duty <file>", "the duty that a reaction's quantity is of")
     .option("--compare <network>", "draw this one instead, with what moved since the first")
     .option("--set <name=value>", "another value of a parameter, constant or feed.flow; repeatable", collect)

@@ -74,6 +74,12 @@ export function shownOfSpecies(
   return { quantity: `consumption of ${steady.species[species]}`, values: consumed, unit: rate };
 }
 
+/** The temperature that leaves each body, where heat is balanced. */
+export function shownTemperature(plant: Plant, temperatures: Float64Array, unit: Unit): Shown {
+  const leaving = (place: string): number => temperatures[plant.exit.get(place) ?? -1] ?? Number.NaN;
+  return { quantity: "temperature", values: byBody(plant, leaving), unit };
+}
+
 /** The sheet with the quantity as tones and behind the volumes; bodies without a number keep their tint. */
 export function withTones(sheet: FlowSheet, { quantity, values, unit }: Shown): FlowSheet {
   const shown = sheet.bodies.flatMap((b) => (b.role === "body" && values.has(b.name) ? [values.get(b.name) ?? 0] : []));

@@ -23,7 +23,7 @@ export function answerOf(result: StudyResult): AnswerLine[] {
   const wrong =
     lines.length > 0
       ? `${capital(lines.join("; "))}.`
-      : "No bypass, dead water or quiet zone shows in the best network.";
+      : "The best network shows none of these: a bypass of the whole vessel, dead water, a quiet zone, a recycle.";
   return [
     { about: "What is wrong", says: wrong },
     { about: "How sure", says: sure(result) },

@@ -84,7 +84,7 @@ function fitFigure(trial: Trial, readings: readonly FittedReading[], time: Unit,
           fitted: r.fitted.map((c) => inUnit(c, unit)),
           residual: r.residual.map((c) => differenceInUnit(c, unit)),
           leftOut: leftOutOf(trial, r.at, start, time),
-          ...(reading?.series ? { source: reading.series.file } : {}),
+          ...(reading?.series ? { source: reading.series.file.replace(/^.*[\\/]/u, "") } : {}),
         };
       }),
     },

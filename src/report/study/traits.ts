@@ -1,6 +1,7 @@
-import type { Plant } from "../../compile/plant.js";
+import { kindValues } from "../../compile/evaluate.js";
+import type { Plant, PlantStream } from "../../compile/plant.js";
 import type { Fit } from "../../fit/result.js";
-import { type Compartment, type Feed, isClosed } from "../../model/network.js";
+import { type Compartment, type Feed, isClosed, type Stream } from "../../model/network.js";
 import { holdUp } from "../../units/basis.js";
 import { dimensions } from "../../units/dimension.js";
 import { parseUnit } from "../../units/parse.js";
@@ -59,17 +60,49 @@ export function traitsOf(plant: Plant, fit: Fit): Trait[] {
 }
 
 function bypasses(f: Feed, plant: Plant, fit: Fit): Trait[] {
-  const outlets = new Set(plant.outlets.map((o) => o.name));
-  const own = plant.feeds.find((p) => p.name === f.name)?.flow ?? 0;
-  return plant.streams.flatMap((s): Trait[] => {
-    const share = s.flow / own;
-    if (s.from !== f.name || !outlets.has(s.to) || !(share >= worthSaying)) return [];
-    const split = f.streams.find((x) => x.to === s.to)?.split;
-    const known = split?.is === "share" ? intervalOf(split.value, plant, fit) : undefined;
+  return waysPast(f.name, plant).flatMap(({ streams, share }): Trait[] => {
+    if (!(share >= worthSaying)) return [];
+    const to = streams[streams.length - 1].to;
+    const splits = streams.flatMap((s) => splitOf(s, plant) ?? []);
+    // of several splits on one way no interval follows without their correlation
+    const known = splits.length === 1 && splits[0].is === "share" ? intervalOf(splits[0].value, plant, fit) : undefined;
     const amount = estimateLine(estimate(share, known, percent));
-    const place = `${s.from}>${s.to}`;
-    return [{ is: "bypass", place, line: `${amount} of '${f.name}' slips past the vessel to '${s.to}'` }];
+    const place = `${streams[0].from}>${streams[0].to}`;
+    return [{ is: "bypass", place, line: `${amount} of '${f.name}' slips past the vessel to '${to}'` }];
   });
+}
+
+/** A way from a feed to an outlet that meets nothing but places without volume, and the share of the feed that takes it. */
+interface WayPast {
+  readonly streams: readonly PlantStream[];
+  readonly share: number;
+}
+
+function waysPast(feed: string, plant: Plant): readonly WayPast[] {
+  const outlets = new Set(plant.outlets.map((o) => o.name));
+  const empty = new Set(
+    plant.network.compartments
+      .filter((c) => c.kind.volume(kindValues(c, plant.env)) === 0 && c.kind.flows)
+      .map((c) => c.name),
+  );
+  const onward = (from: string): readonly PlantStream[] =>
+    plant.streams.filter((s) => s.from === from && s.role === "forward");
+  const follow = (from: string, so: WayPast): readonly WayPast[] => {
+    const own = onward(from);
+    const all = own.reduce((sum, s) => sum + s.flow, 0);
+    return own.flatMap((s) => {
+      const way = { streams: [...so.streams, s], share: so.share * (s.flow / all) };
+      if (outlets.has(s.to)) return [way];
+      return empty.has(s.to) && way.streams.length <= empty.size ? follow(s.to, way) : [];
+    });
+  };
+  return follow(feed, { streams: [], share: 1 });
+}
+
+/** How the file divides what leaves the place that the stream comes from, where it divides it. */
+function splitOf(s: PlantStream, { network }: Plant): Stream["split"] | undefined {
+  const ways = [...network.feeds, ...network.compartments].find((x) => x.name === s.from)?.streams ?? [];
+  return ways.length > 1 ? ways.find((w) => w.to === s.to)?.split : undefined;
 }
 
 /** Water that the flow never reaches, or only by exchange. */
