@@ -1,5 +1,6 @@
 import { collector } from "../problems/report.js";
 import type { ScalarNode } from "../read/tree.js";
+import { dutyCautions } from "../report/duty-cautions.js";
 import { resolveAim } from "../resolve/aim.js";
 import { type AimRange, solveAim } from "../study/aim.js";
 import { type Input, inputsOf } from "../study/inputs.js";
@@ -42,6 +43,7 @@ export function aimOutcome({ operation, rows, carries }: Asked, options: SweepOp
       network: operation.network.title,
       duty: operation.duty.title,
       ...aimJson(found),
+      cautions: dutyCautions({ ...operation.duty, report: [...operation.duty.report, aim.line] }).map((c) => c.says),
     },
     notes: found.stopped ? ["backmix: interrupted; what was looked at is printed"] : [],
   };

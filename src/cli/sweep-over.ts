@@ -1,3 +1,4 @@
+import { dutyCautions } from "../report/duty-cautions.js";
 import { plotSweep } from "../report/study/sweep-figure.js";
 import { inputsOf } from "../study/inputs.js";
 import { type Sweep, sweep } from "../study/sweep.js";
@@ -46,6 +47,7 @@ export async function overOutcome(asked: Asked, options: SweepOptions, { io }: C
       network: operation.network.title,
       duty: operation.duty.title,
       ...sweepJson(found),
+      cautions: dutyCautions(operation.duty).map((c) => c.says),
       ...(output === undefined ? {} : { written: output }),
     },
     notes: [

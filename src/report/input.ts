@@ -31,6 +31,8 @@ export interface StudyReport {
   /** Distributions of residence time and age of the vessel as fitted. */
   readonly residence: readonly Figure[];
   readonly predictions: readonly Prediction[];
+  /** Steady states beside those of the predictions, in sentences; none where none was found. */
+  readonly states?: readonly string[];
   /** What the liquid is like along the bodies that it flows through, by duty. */
   readonly along: readonly Figure[];
   /** What leaves over time, by duty that changes in time. */

@@ -13,6 +13,7 @@ export function writeSummary(report: StudyReport): string {
       ["duty", "quantity", "value (95 %)"],
       report.predictions.map((q) => [q.duty, q.name, estimateLine(q.estimate)]),
     ),
+    bullets("Steady states", report.states ?? []),
     table(
       "Changes",
       ["change", "quantity", "value (95 %)", "chance of being better"],

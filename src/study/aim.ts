@@ -4,6 +4,7 @@ import type { Figure } from "../reaction/figures.js";
 import { betterIs } from "./direction.js";
 import { type Input, rowWith } from "./inputs.js";
 import { noRow, type Operation, operate, type Row, valuesAt } from "./operate.js";
+import { type OtherStates, otherStates } from "./other-states.js";
 import { quantile } from "./spread.js";
 import { spaced, type Watch } from "./sweep.js";
 
@@ -42,6 +43,8 @@ export interface AimResult {
   readonly best: Reached | undefined;
   /** Stretches in which no vessel is possible, with a reason. */
   readonly impossible: readonly (Stretch & { readonly why: string })[];
+  /** Where a search found further steady states, or could not look: over the range, and at the answer. */
+  readonly others: readonly OtherStates[];
   readonly draws: number;
   readonly stopped: boolean;
 }
@@ -58,6 +61,8 @@ export interface Reached {
 
 /** Points of the first look; two crossings nearer than their distance can be missed. */
 const looks = 33;
+/** Values over the range at which further steady states are looked for. */
+const searches = 9;
 /** Points over each stretch in which the middle values meet the aim, where draws are looked at. */
 const looksOverDraws = 5;
 
@@ -121,6 +126,10 @@ export function solveAim(operation: Operation, aim: Aim, range: AimRange, option
       },
     ];
   };
+  const searched = (share: number): OtherStates[] => {
+    const found = options.cancelled?.() ? undefined : otherStates(own, place(share), [at(share)]);
+    return found ? [found] : [];
+  };
   const rank = ({ value }: Looked): number => (sign === "=" ? -Math.abs(value) : value);
   const best = seen
     .filter((p) => !Number.isNaN(p.value))
@@ -138,6 +147,7 @@ export function solveAim(operation: Operation, aim: Aim, range: AimRange, option
       ...inInput(s),
       why: whys.get(s.from) ?? "there is no figure",
     })),
+    others: stopped ? [] : [...spaced(0, 1, searches, false), ...zeros].sort((a, b) => a - b).flatMap(searched),
     draws: rows.length,
     stopped,
   };

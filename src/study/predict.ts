@@ -3,7 +3,8 @@ import { predict } from "../reaction/prediction.js";
 import { withTimes } from "../transient/in-time.js";
 import { betterIs } from "./direction.js";
 import { overTime } from "./in-time.js";
-import { plantOf } from "./operate.js";
+import { noRow, plantOf } from "./operate.js";
+import { otherStates } from "./other-states.js";
 import type { Bounds, Prediction, Ranked } from "./result.js";
 import type { Sample } from "./sample.js";
 import { interval95, quantile } from "./spread.js";
@@ -17,6 +18,7 @@ export function predictDuty(ranked: Ranked, { operation, rows, values }: Sample)
   const { state, figures: steady, bounds, premises } = predict(plant, duty);
   const figures = withTimes(plant, duty, steady);
   const spreads = spreadsOf(operation, ranked.fit, rows, values);
+  const states = otherStates(operation, noRow);
   const course = overTime(plant, duty);
   return figures.map((f, k): Prediction => {
     const b = bounds[k];
@@ -38,6 +40,7 @@ export function predictDuty(ranked: Ranked, { operation, rows, values }: Sample)
       bounds: within,
       spread: spreads[k],
       steady: state,
+      states,
       course,
       plant,
     };

@@ -13,6 +13,7 @@ import type { Unit } from "../units/unit.js";
 import type { AimResult } from "./aim.js";
 import type { InTime } from "./in-time.js";
 import type { Nested } from "./nested.js";
+import type { OtherStates } from "./other-states.js";
 import type { Standing } from "./rank.js";
 import type { Residence } from "./residence.js";
 import type { Spread } from "./spread-shares.js";
@@ -83,6 +84,8 @@ export interface Prediction {
   /** What holds its variance; undefined where nothing is unsure. */
   readonly spread: Spread | undefined;
   readonly steady: SteadyState;
+  /** Further steady states; undefined where one was found and nothing is against it. */
+  readonly states: OtherStates | undefined;
   /** What leaves in time, where the duty changes in time. */
   readonly course: InTime | undefined;
   /** The vessel as it is operated there. */

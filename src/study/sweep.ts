@@ -1,6 +1,7 @@
 import type { Figure } from "../reaction/figures.js";
 import { type Input, rowWith } from "./inputs.js";
 import { noRow, type Operation, operate, type Row, valuesAt } from "./operate.js";
+import { type OtherStates, otherStates, someOf } from "./other-states.js";
 import { interval95 } from "./spread.js";
 
 /** One input of a sweep and its values, SI. */
@@ -25,6 +26,8 @@ export interface Sweep {
   readonly axes: readonly Axis[];
   /** The last axis runs fastest. */
   readonly points: readonly SweepPoint[];
+  /** Where a search found further steady states, or could not look, at some of the points. */
+  readonly others: readonly OtherStates[];
   readonly draws: number;
   readonly stopped: boolean;
 }
@@ -34,6 +37,9 @@ export interface Watch {
   /** 0 to 1. */
   readonly progress?: (done: number) => void;
 }
+
+/** Points of a sweep at which further steady states are looked for. */
+const mostSearched = 15;
 
 /**
  * The reported figures of a duty over one or two of its inputs. The same draws serve every point, so that a curve and its
@@ -56,7 +62,11 @@ export function sweep(operation: Operation, axes: readonly Axis[], rows: readonl
       intervals: (here.figures ?? []).map((_, i) => interval95(drawn.map((v) => v?.[i] ?? Number.NaN))),
     });
   }
-  return { operation, axes, points, draws: rows.length, stopped: points.length < places.length };
+  const others = someOf(points, mostSearched).flatMap(({ at, figures }) => {
+    if (!figures || watch.cancelled?.()) return [];
+    return otherStates(operation, rowWith(noRow, inputs, at), at) ?? [];
+  });
+  return { operation, axes, points, others, draws: rows.length, stopped: points.length < places.length };
 }
 
 /** `count` values from one end to the other, both exact; in equal ratios where `log`. */

@@ -16,7 +16,7 @@ import { furtherJson, sameCurveJson } from "./further.js";
 import { momentsResultJson } from "./moments.js";
 import { finite, pure, quantity } from "./quantity.js";
 import { regulatedJson } from "./regulated.js";
-import { aimJson, sweepJson } from "./sweep.js";
+import { aimJson, otherStatesJson, sweepJson } from "./sweep.js";
 
 /** What a study found, without the path of its report. */
 export function studyJson(result: StudyResult): Record<string, unknown> {
@@ -81,6 +81,7 @@ function predictionJson({
   oneSided95,
   bounds,
   spread,
+  states,
 }: Prediction): object {
   return {
     duty: duty.title,
@@ -91,6 +92,7 @@ function predictionJson({
     oneSided95: oneSided95 ? { bound: oneSided95.bound, ...quantity(oneSided95.value, unit) } : null,
     bounds: bounds ? boundsJson(bounds, unit) : null,
     ...spreadJson(spread, unit),
+    ...(states ? { otherStates: otherStatesJson(states, []) } : {}),
   };
 }
 

@@ -1,11 +1,12 @@
 import type { AimResult, Reached } from "../../study/aim.js";
+import type { OtherStates } from "../../study/other-states.js";
 import type { Sweep } from "../../study/sweep.js";
 import { inUnit, type Unit } from "../../units/unit.js";
 import { finite, type QuantityJson, quantity, series, unitName } from "./quantity.js";
 import { reportedJson } from "./steady.js";
 
 /** A sweep: its inputs, then every point with its figures, or why there are none. Conversion, yield and selectivity are fractions. */
-export function sweepJson({ axes, points, draws, stopped }: Sweep): Record<string, unknown> {
+export function sweepJson({ axes, points, others, draws, stopped }: Sweep): Record<string, unknown> {
   return {
     over: axes.map(({ input, values }) => ({ name: input.name, ...series(values, input.unit) })),
     points: points.map(({ at, figures, cannot, intervals }) => ({
@@ -20,6 +21,12 @@ export function sweepJson({ axes, points, draws, stopped }: Sweep): Record<strin
           }
         : { figures: null, cannot }),
     })),
+    otherStates: others.map((o) =>
+      otherStatesJson(
+        o,
+        axes.map((a) => a.input.unit),
+      ),
+    ),
     draws,
     ...(stopped ? { stopped: "cancelled" } : {}),
   };
@@ -56,7 +63,7 @@ export function sweepCsv({ operation, axes, points }: Sweep): string {
 
 /** What an aim came to. */
 export function aimJson(found: AimResult): Record<string, unknown> {
-  const { aim, range, sign, confidence, crossings, met, best, impossible, draws, stopped } = found;
+  const { aim, range, sign, confidence, crossings, met, best, impossible, others, draws, stopped } = found;
   const { unit } = range.input;
   const stretch = ({ from, to }: { from: number; to: number }): object => ({
     from: quantity(from, unit),
@@ -71,6 +78,7 @@ export function aimJson(found: AimResult): Record<string, unknown> {
     met: met.map(stretch),
     best: best ? reachedJson(best, unit) : null,
     impossible: impossible.map((s) => ({ ...stretch(s), why: s.why })),
+    otherStates: others.map((o) => otherStatesJson(o, [unit])),
     draws,
     ...(stopped ? { stopped: "cancelled" } : {}),
   };
@@ -91,4 +99,15 @@ const reachedJson = (
   figure: reportedJson(figure),
   shareMeeting: share ?? null,
   ...(kept === undefined ? {} : { kept: quantity(kept, figure.unit) }),
+});
+
+/** Steady states that a search found at one point, each with what it reports. */
+export const otherStatesJson = ({ at, states, left }: OtherStates, units: readonly Unit[]): object => ({
+  ...(units.length > 0 ? { at: at.map((v, k) => quantity(v, units[k])) } : {}),
+  states: states.map(({ figures, stable, reached }) => ({
+    stable: stable ?? null,
+    fromFeed: reached,
+    report: figures.map((f) => ({ name: f.name, ...reportedJson(f) })),
+  })),
+  notSearched: left,
 });

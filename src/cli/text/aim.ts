@@ -1,4 +1,5 @@
 import { chance } from "../../report/digits.js";
+import { dutyCautions } from "../../report/duty-cautions.js";
 import { aimText as aimLine, aimWords } from "../../report/study/aim-words.js";
 import type { AimResult } from "../../study/aim.js";
 import type { Operation } from "../../study/operate.js";
@@ -36,5 +37,8 @@ export function aimText({ network, duty }: Operation, found: AimResult, carries:
       rows,
     ),
     carries === "" ? "" : wrap("  ", `draws carry ${carries}`),
+    dutyCautions({ ...duty, report: [...duty.report, aim.line] })
+      .map(({ says }) => wrap("  caution: ", says))
+      .join("\n"),
   );
 }

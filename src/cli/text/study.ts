@@ -5,6 +5,7 @@ import type { AnswerLine } from "../../report/input.js";
 import { reportAims } from "../../report/study/asked.js";
 import { decisionWords } from "../../report/study/decision-words.js";
 import { regulatedCaution, regulatedLines } from "../../report/study/regulated-words.js";
+import { studyStatesWords } from "../../report/study/states-words.js";
 import type { StudyResult } from "../../study/result.js";
 import { formatNumber } from "../../units/format.js";
 import { inUnit, type Unit } from "../../units/unit.js";
@@ -22,6 +23,9 @@ export function studyText(result: StudyResult, answer: readonly AnswerLine[], re
     answerText(answer),
     rankingTable(result),
     predictionsTable(result),
+    studyStatesWords(result)
+      .map((says) => wrap("  ", says))
+      .join("\n"),
     changesTable(result),
     decisionWords(result)
       .map((says) => wrap("  ", says))

@@ -2,12 +2,12 @@ import { plotBars } from "../../draw/bars.js";
 import { drawIntervals, type IntervalRow, intervalsTable } from "../../draw/intervals.js";
 import { formatNumber } from "../../units/format.js";
 import { estimateLine } from "../digits.js";
-import { type Cell, figure, type Html, section, table } from "../html.js";
+import { type Cell, figure, type Html, list, section, table } from "../html.js";
 import type { Prediction, StudyReport } from "../input.js";
 import { estimateRow, grouped } from "./rows.js";
 
 /** What the vessel makes under each duty: value, interval, where mixing would put it. */
-export function predictionsSection({ predictions, along }: StudyReport): Html {
+export function predictionsSection({ predictions, states = [], along }: StudyReport): Html {
   const driven = predictions.some((p) => (p.drivers?.length ?? 0) > 0);
   const rows = predictions.map((p) => {
     const { bounds, boundsSay } = p;
@@ -42,6 +42,7 @@ export function predictionsSection({ predictions, along }: StudyReport): Html {
   return section("predictions", "What it makes", [
     ...drawn,
     table("Predictions", columns, rows),
+    states.length > 0 ? `<h3>Steady states</h3>${list(states)}` : "",
     ...spreads(predictions),
     ...along.map(figure),
   ]);

@@ -2,6 +2,7 @@ import type { AimResult, Stretch } from "../../study/aim.js";
 import { formatQuantity } from "../../units/format.js";
 import type { Unit } from "../../units/unit.js";
 import { chance } from "../digits.js";
+import { aimStatesWords } from "./states-words.js";
 
 const digits = 4;
 
@@ -42,7 +43,7 @@ export function aimWords(found: AimResult): string[] {
     const place = from === to ? `at ${say(from)}` : `from ${say(from)} to ${say(to)}`;
     said.push(`Left out: ${name} ${place}: ${why}.`);
   }
-  return said;
+  return [...said, ...aimStatesWords(found)];
 }
 
 function whereWords(met: readonly Stretch[], { range }: AimResult, say: (x: number) => string): string {

@@ -2,6 +2,7 @@ import type { Asked } from "../../model/study.js";
 import type { Answered, StudyResult } from "../../study/result.js";
 import type { Figure, ReportAim } from "../input.js";
 import { aimText, aimWords } from "./aim-words.js";
+import { sweepStatesWords } from "./states-words.js";
 import { plotSweep } from "./sweep-figure.js";
 
 /** "(with Second tank; by 'R-12')": what an answer is about beside the duty, where it is not the vessel as it is. */
@@ -28,7 +29,9 @@ export function sweepFigures(result: StudyResult): Figure[] {
       {
         name: `sweep-${k + 1}`,
         ...plotSweep(found, { untitled: true }),
-        caption: `${asked.duty.title} over ${names}${about(result, answer)}${band}.${gaps}`,
+        caption: `${asked.duty.title} over ${names}${about(result, answer)}${band}.${gaps}${sweepStatesWords(found)
+          .map((s) => ` ${s}`)
+          .join("")}`,
       },
     ];
   });

@@ -29,6 +29,7 @@ import { inTimeFigures } from "./in-time-figures.js";
 import { nestedWords } from "./nested-words.js";
 import { regulatedLines } from "./regulated-words.js";
 import { residenceFigures } from "./residence-figures.js";
+import { studyStatesWords } from "./states-words.js";
 import { testedFlows } from "./tested.js";
 import { traitsOf } from "./traits.js";
 
@@ -65,6 +66,7 @@ export function reportOf(
     identifiability: { ...identifiability, says: [...identifiability.says, ...furtherWords(result.further)] },
     residence,
     predictions: result.predictions.filter((p) => p.rival === best?.rival).map(predictionRow),
+    states: studyStatesWords(result),
     along,
     inTime,
     regulated: result.regulated.map(({ rival, duty, figures, lower }) => ({

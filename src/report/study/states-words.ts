@@ -1,0 +1,122 @@
+import type { Aim } from "../../model/aim.js";
+import type { Reported } from "../../model/duty.js";
+import type { Figure } from "../../reaction/figures.js";
+import type { AimResult } from "../../study/aim.js";
+import type { Input } from "../../study/inputs.js";
+import type { OtherStates, StateFigures } from "../../study/other-states.js";
+import type { StudyResult } from "../../study/result.js";
+import type { Sweep } from "../../study/sweep.js";
+import { formatQuantity } from "../../units/format.js";
+import type { Unit } from "../../units/unit.js";
+
+/** What is to be said of steady states beside those of a sweep; nothing where none was found. */
+export function sweepStatesWords({ others, axes, operation }: Sweep): string[] {
+  return statesWords(
+    others,
+    axes.map((a) => a.input),
+    operation.duty.report,
+    "The figures above are of",
+  );
+}
+
+/** The same of an aim, with whether the other states meet it. */
+export const aimStatesWords = ({ others, range, aim }: AimResult): string[] =>
+  statesWords(others, [range.input], [aim.line], "The answer holds for", aim);
+
+/** The same of one duty. */
+export const dutyStatesWords = (found: OtherStates | undefined, lines: readonly Reported[]): string[] =>
+  found ? statesWords([found], [], lines, "The figures are of") : [];
+
+function statesWords(
+  others: readonly OtherStates[],
+  inputs: readonly Input[],
+  lines: readonly Reported[],
+  subject: string,
+  aim?: Aim,
+): string[] {
+  const words: string[] = [];
+  const range = (list: readonly OtherStates[]): string => placesOf(list, inputs);
+  const several = others.filter((o) => o.states.length > 1);
+  const away = others.filter((o) => o.states.some((s) => s.reached && s.stable === false));
+  if (several.length > 0) {
+    const one = worst(several, aim);
+    const [shown] = one.states.filter((s) => !s.reached && s.stable !== false && !meets(s, aim)).slice(-1);
+    const other = shown ?? one.states.filter((s) => !s.reached).at(-1);
+    const kind =
+      other?.stable === undefined ? "another" : other.stable ? "another stable one" : "another, unstable one";
+    const against = aim && aim.sign !== "=" && other && !meets(other, aim) ? ", which does not meet the aim" : "";
+    const gives = other ? ` ${place(one, inputs)}${kind} gives ${figuresWords(other.figures, lines)}${against}.` : "";
+    words.push(
+      `Several steady states${range(several)}: which one the vessel runs at depends on how it came there. ${subject} the one that a vessel filled with what is fed runs to.${capital(gives)}`,
+    );
+  }
+  if (away.length > 0) {
+    words.push(
+      `The steady state that is followed is unstable${range(away)}: the vessel does not stay there, and these figures are not what it will give.`,
+    );
+  }
+  if (words.length > 0) {
+    const [input] = inputs;
+    words.push(
+      input
+        ? `All states over a range: simulate with --duty and --states "${input.name}=…".`
+        : "All states: simulate with --duty; over a range of one input with --states.",
+    );
+  }
+  const left = [...new Set(others.flatMap((o) => o.left))];
+  if (left.length > 0) words.push(`Not searched for other steady states: ${left.join(", ")}.`);
+  return words;
+}
+
+/** Of several points one at which another stable state misses the aim, else one with another stable state. */
+function worst(several: readonly OtherStates[], aim: Aim | undefined): OtherStates {
+  const stable = (o: OtherStates) => o.states.some((s) => !s.reached && s.stable !== false);
+  const missing = (o: OtherStates) => o.states.some((s) => !s.reached && s.stable !== false && !meets(s, aim));
+  return (aim && several.find(missing)) ?? several.find(stable) ?? several[0];
+}
+
+function meets({ figures }: StateFigures, aim: Aim | undefined): boolean {
+  if (!aim) return false;
+  const off = figures[0].value - aim.target.value;
+  const close = 1e-6 * (Math.abs(aim.target.value) || 1);
+  return aim.sign === "=" ? Math.abs(off) <= close : aim.sign === "<=" ? off <= close : off >= -close;
+}
+
+function figuresWords(figures: readonly Figure[], lines: readonly Reported[]): string {
+  return figures
+    .flatMap((f, k) => {
+      if (lines[k].what === "tracer-time" || lines[k].what === "time-beyond") return [];
+      const share = ["conversion", "yield", "selectivity"].includes(lines[k].what);
+      const unit: Unit = share ? { ...f.unit, name: "%", factor: 0.01 } : f.unit;
+      return [`${f.name} ${f.why ?? formatQuantity(f.value, unit, 4)}`];
+    })
+    .join(", ");
+}
+
+const place = ({ at }: OtherStates, inputs: readonly Input[]): string =>
+  inputs.length === 0
+    ? ""
+    : `at ${inputs.map((i, k) => `${i.name} = ${formatQuantity(at[k], i.unit, 4)}`).join(", ")} `;
+
+/** " at feed.temperature = 300 K", " between …": where points that were looked at lie. */
+function placesOf(list: readonly OtherStates[], inputs: readonly Input[]): string {
+  if (inputs.length === 0) return "";
+  if (inputs.length > 1) return ` at ${list.length} of the points looked at`;
+  const [{ name, unit }] = inputs;
+  const at = list.map((o) => o.at[0]);
+  const [low, high] = [Math.min(...at), Math.max(...at)];
+  if (low === high) return ` at ${name} = ${formatQuantity(low, unit, 4)}`;
+  return ` at ${list.length} values of ${name} looked at, from ${formatQuantity(low, unit, 4)} to ${formatQuantity(high, unit, 4)}`;
+}
+
+const capital = (text: string): string => text.replace(/^ ([a-z])/, (_, c: string) => ` ${c.toUpperCase()}`);
+
+/** What a study has to tell of steady states beside those of its predictions, by duty and rival. */
+export function studyStatesWords({ predictions, ranking }: StudyResult): string[] {
+  const named = ranking.filter((r) => r.survives).length > 1;
+  const first = predictions.filter((p, k) => predictions.findIndex((q) => q.states === p.states) === k);
+  return first.flatMap(({ duty, rival, states }) => {
+    const says = dutyStatesWords(states, duty.report).join(" ");
+    return says === "" ? [] : [`${duty.title}${named ? ` (by '${rival.network.title}')` : ""}: ${says}`];
+  });
+}

@@ -1,0 +1,98 @@
+import { describe, expect, test } from "vitest";
+import { at, backmix, json } from "./fake.js";
+
+/** An adiabatic tank that heats by 100 K as all reacts, and a chemostat without living cells in its feed. */
+const files = {
+  "tank.yaml": `network: Tank
+format: 1
+feeds: {feed: {flow: 1 L/min, to: tank}}
+compartments: {tank: {kind: stirred, volume: 10 L, to: product}}
+outlets: [product]
+`,
+  "hot.yaml": `duty: Cold feed
+format: 1
+chemistry: hot.chem.yaml
+feeds: {feed: {A: 2 mol/L, temperature: 300 K}}
+heat: adiabatic
+report: [conversion of A, temperature at product]
+`,
+  "hot.chem.yaml": `chemistry: Hot
+format: 1
+species: {A: {}, P: {}}
+constants: {k: {at: 300 K, value: 0.001 1/min, activation: 80 kJ/mol}}
+medium: {heat-capacity: 4 kJ/L/K}
+reactions: [{equation: A -> P, rate: k * A, heat: -200 kJ/mol}]
+`,
+  "mild.yaml": `duty: Mild
+format: 1
+chemistry: hot.chem.yaml
+feeds: {feed: {A: 0.1 mol/L, temperature: 300 K}}
+heat: adiabatic
+report: [log-removal of A]
+`,
+  "chemostat.yaml": `network: Chemostat
+format: 1
+parameters: {Q: {value: 0.4 L/h, between: [0.05 L/h, 1 L/h]}}
+feeds: {feed: {flow: Q, to: tank}}
+compartments: {tank: {kind: stirred, volume: 1 L, to: out}}
+outlets: [out]
+`,
+  "monod.yaml": `duty: Sterile feed
+format: 1
+chemistry: monod.chem.yaml
+feeds: {feed: {S: 10 g/L}}
+report: [conversion of S]
+`,
+  "monod.chem.yaml": `chemistry: Monod
+format: 1
+species: {S: {}, X: {}}
+constants: {mu: 0.5 1/h, ks: 0.1 g/L}
+reactions: [{makes: {S: -2, X: 1}, rate: mu * S / (ks + S) * X}]
+`,
+};
+
+describe("several steady states in a sweep", () => {
+  test("an aim at a temperature says that another stable state misses it, with both balances of that state", async () => {
+    const args = ["sweep", "tank.yaml", "--duty", "hot.yaml", "--aim", "temperature at product <= 320 K"];
+    const more = ["--by", "feed.temperature", "--between", "300 K..340 K"];
+    const { document } = await json([...args, ...more], { files });
+    const states = at(document, "otherStates.0.states") as { stable: boolean; fromFeed: boolean; report: object[] }[];
+    expect(at(document, "otherStates.0.at.0.value")).toBeCloseTo(300, 9);
+    expect(states.map((s) => s.stable)).toEqual([true, false, true]);
+    expect(states.map((s) => s.fromFeed)).toEqual([true, false, false]);
+    const T = at(states[2], "report.0.value") as number;
+    // What has reacted by the heat balance is what reacts by the rate at that temperature.
+    const reacted = (T - 300) / 100;
+    const k = 0.001 * Math.exp((80_000 / 8.314462618) * (1 / 300 - 1 / T));
+    expect(reacted).toBeCloseTo((10 * k) / (1 + 10 * k), 8);
+    const { out: stdout } = await backmix([...args, ...more], { files });
+    const said = stdout.replace(/\s+/g, " ");
+    expect(said).toContain("another stable one gives temperature at product 396 K, which does not meet the aim");
+    expect(said).toContain("A model made from a tracer test says nothing about runaway");
+  });
+
+  test("a sweep that follows an unstable state says so", async () => {
+    const args = ["sweep", "chemostat.yaml", "--duty", "monod.yaml", "--over", "Q=0.2 L/h..0.9 L/h:2"];
+    const { out: stdout } = await backmix(args, { files });
+    const said = stdout.replace(/\s+/g, " ");
+    expect(said).toContain("The steady state that is followed is unstable at Q = 0.2 L/h");
+    const { document } = await json(args, { files });
+    const states = at(document, "otherStates.0.states") as object[];
+    // What lives there grows as fast as it is washed out: S = ks D / (mu - D).
+    const best = Math.max(...states.map((s) => at(s, "report.0.value") as number));
+    expect(best).toBeCloseTo(1 - (0.1 * 0.2) / (0.5 - 0.2) / 10, 8);
+    // Above mu S / (ks + S) = 0.495 1/h nothing lives: one state, and nothing to tell.
+    expect(at(document, "otherStates")).toHaveLength(1);
+  });
+
+  test("where one state is found nothing is said of others; kill carries its caution", async () => {
+    const { out: stdout } = await backmix(
+      ["sweep", "tank.yaml", "--duty", "mild.yaml", "--over", "feed.A=0.05..0.1 mol/L:2"],
+      {
+        files,
+      },
+    );
+    expect(stdout).not.toContain("which one the vessel runs at");
+    expect(stdout).toContain("A modelled log-removal is not credit");
+  });
+});
