@@ -143,7 +143,8 @@ export class Parcels {
   /** Stays between which nothing is hard to follow: marks of the body, stretches of entry, and finer ones towards age 0. */
   private cuts(t: number, from: number, end: number): number[] {
     const { stays, mean } = this.ask;
-    const all = [from, end, ...stays.marks, ...(from > 0 ? [] : fine(stays))];
+    // Nobody leaves before `from`: there the share that stays longer has a corner.
+    const all = [from, end, stays.from, ...stays.marks, ...(from > 0 ? [] : fine(stays))];
     for (let k = this.locate(t - end * mean); k < this.entered.length; k++) {
       all.push((t - this.entered[k].from) / mean, (t - this.entered[k].to) / mean);
     }

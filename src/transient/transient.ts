@@ -3,6 +3,8 @@ import type { Plant } from "../compile/plant.js";
 import type { Chemistry } from "../model/chemistry.js";
 import type { Duty } from "../model/duty.js";
 import type { Halt } from "../numerics/odex.js";
+import { RefusedError } from "../problems/refused.js";
+import { problem } from "../problems/report.js";
 import { type Conditions, conditionsOf, type DutySettings } from "../reaction/conditions.js";
 import { conservedBy } from "../reaction/conserved.js";
 import { steadyState } from "../reaction/steady.js";
@@ -85,7 +87,7 @@ export interface TransientBalance extends Amounts {
  * Cells and dispersed bodies are integrated together (Radau IIA, sparse exact Jacobian, stopping wherever something that enters
  * jumps); tubes are followed as parcels, so that a front stays a front. Relative accuracy is about 1e-8 at the default tolerance.
  * @param times s, ascending, from 0
- * @throws RefusedError where the network holds something that cannot be followed in time yet
+ * @throws RefusedError where the network or the duty holds something that cannot be followed in time yet
  * @see the methods beside their code in `src/transient` and `src/numerics`
  */
 export function transient(
@@ -96,6 +98,7 @@ export function transient(
   options: TransientOptions = {},
 ): Transient {
   requireCarried(plant, "transient");
+  requireNoExchangers(duty);
   const settings = options.settings ?? {};
   const conditions = conditionsOf(plant, chemistry, duty, settings);
   const scene = sceneOf(plant, conditions);
@@ -174,6 +177,14 @@ export function transient(
       };
     },
   };
+}
+
+/** What leaves warms what enters at the same time: a circle that is not followed in time. @throws RefusedError */
+function requireNoExchangers({ heat }: Duty): void {
+  const refused = (heat?.exchangers ?? []).map(({ at, feed }) =>
+    problem("not-yet", at, { what: `a transient with \`heat-exchange\` (of '${feed}')` }),
+  );
+  if (refused.length > 0) throw new RefusedError(refused);
 }
 
 function startOf(

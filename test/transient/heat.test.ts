@@ -2,6 +2,8 @@ import { describe, expect, test } from "vitest";
 import { compile } from "../../src/compile/compile.js";
 import { parseDuty } from "../../src/parse/duty.js";
 import { parseNetwork } from "../../src/parse/network.js";
+import type { Problem } from "../../src/problems/problem.js";
+import { RefusedError } from "../../src/problems/refused.js";
 import { networkSettings } from "../../src/reaction/conditions.js";
 import { steadyState } from "../../src/reaction/steady.js";
 import { transient } from "../../src/transient/transient.js";
@@ -72,5 +74,22 @@ describe("heat in time", () => {
     for (const c of run.balance?.closure ?? [1]) expect(Math.abs(c)).toBeLessThan(1e-9);
     expect(Math.abs(run.balance?.heat ?? 1)).toBeLessThan(1e-9);
     expect(run.balance?.conserved).toBeLessThan(1e-9);
+  });
+
+  test("an exchanger is refused with its place: what leaves would warm what enters", () => {
+    const { plant, duty } = read(
+      train,
+      `feeds: {feed: {A: 1 mol/L, temperature: 30 degC}}
+heat: adiabatic
+heat-exchange: [{warms: feed, from: product, effectiveness: 70 %}]`,
+    );
+    let problems: readonly Problem[] = [];
+    try {
+      transient(plant, duty.chemistry, duty, minutes(0, 20));
+    } catch (e) {
+      if (e instanceof RefusedError) problems = e.problems;
+    }
+    expect(problems.map((p) => p.code)).toEqual(["not-yet"]);
+    expect(problems[0].message).toContain("`heat-exchange` (of 'feed')");
   });
 });
