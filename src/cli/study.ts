@@ -6,6 +6,7 @@ import { writeSummary } from "../report/markdown.js";
 import { writeReport } from "../report/report.js";
 import { reportOf } from "../report/study/build.js";
 import { untraceable } from "../simulate/trace.js";
+import type { Ranked, StudyResult } from "../study/result.js";
 import { runStudy } from "../study/run.js";
 import type { Context } from "./context.js";
 import type { ExitStatus, Io } from "./io.js";
@@ -55,7 +56,7 @@ export async function study(file: string, options: StudyOptions, { inputs, io }:
     status,
     text: studyText(result, answer, path),
     json: { ...json, report: path ?? null },
-    notes: notesOf(status, folder, path),
+    notes: notesOf(status, result, folder, path),
   };
 }
 
@@ -76,8 +77,23 @@ const commandLine = (file: string, { output, starts }: StudyOptions): string =>
     ...(starts === undefined ? [] : ["--starts", starts]),
   ].join(" ");
 
-function notesOf(status: ExitStatus, folder: string | undefined, path: string | undefined): string[] {
+function notesOf(
+  status: ExitStatus,
+  { ranking }: StudyResult,
+  folder: string | undefined,
+  path: string | undefined,
+): string[] {
   if (status === 130) return ["backmix: interrupted; what was finished is printed, no report is written"];
   const noFolder = folder === undefined ? ["backmix: no report is written; name a folder with -o or `out:`"] : [];
-  return status === 3 && path !== undefined ? ["backmix: a fit did not converge; the report says which"] : noFolder;
+  if (status !== 3) return noFolder;
+  const where = path === undefined ? "" : "; the report says which";
+  const notFitted = ranking.filter((r) => !r.fit);
+  const ended = ranking.some((r) => r.fit && !r.fit.converged);
+  return [
+    ...noFolder,
+    ...(ended ? [`backmix: a fit did not converge${where}`] : []),
+    ...(notFitted.length > 0 ? [`backmix: not fitted: ${[...new Set(notFitted.map(whyNot))].join("; ")}`] : []),
+  ];
 }
+
+const whyNot = ({ problems }: Ranked): string => problems[0]?.message ?? "no fit was found";

@@ -35,6 +35,8 @@ export interface Conditions {
   };
   /** What one unit of each reaction makes, anywhere in the plant, scaled: what none of them changes only mixes. */
   readonly numbers: readonly Float64Array[];
+  /** Species of which nothing is left at or below `depleted`, scaled: what a mixed cell still shows there is the guard of a zero-order law. */
+  readonly spends: readonly number[];
 }
 
 /** A quantity that a duty rests on, and how well it is known: what an interval has to carry. */
@@ -63,10 +65,14 @@ export function conditionsOf(
   });
   const scale = scales([...feeds, ...otherLevels(duty, species)], species.length, duty.concentrations);
   const reacting = chemistry ?? { species, reactions: [] };
+  const spends = new Set<number>();
   const reactionsWith = (places: readonly string[]): Reactions => {
     const constants = chemistry ? constantsOf(chemistry, duty, settings, places) : [];
     const thermal = heat && thermalOf(heat.chemistry, duty, settings, heat.capacity);
     const cell = bindKinetics(reacting, constants, scale, "limited", thermal);
+    cell.spends.forEach((spent, i) => {
+      if (spent) spends.add(i);
+    });
     return { cell, tube: bindKinetics(reacting, constants, scale, "cut", thermal), pocket: cell };
   };
   const reactions = reactionsWith([]);
@@ -92,6 +98,7 @@ export function conditionsOf(
     reactionsAt: (node) => own.get(node) ?? reactions,
     varied: own.size > 0,
     numbers: [...new Set([reactions, ...own.values()])].flatMap(({ cell }) => cell.numbers),
+    spends: [...spends],
     ...(heat
       ? { heat: { capacity: heat.capacity, wallAt, exchangers: exchangersOf(plant, duty, heat.capacity) } }
       : {}),

@@ -21,6 +21,12 @@ export interface Kinetics {
   jacobian(y: ArrayLike<number>, at: number, out: Float64Array, to: number): void;
 }
 
+/** Kinetics of a chemistry by itself. */
+export interface Bound extends Kinetics {
+  /** Marks the species that a law uses up which still asks for them at zero: at or below `depleted` nothing is left of them. */
+  readonly spends: Uint8Array;
+}
+
 /** What reacts in one body: mixed cells limit what runs out, tubes cut it; pockets beside the flow are mixed cells. */
 export interface Reactions {
   readonly cell: Kinetics;
@@ -32,7 +38,7 @@ export interface Reactions {
  * Scaled amount of a reactant below which a law that does not vanish without it (zero order) is let down to nothing, so
  * that a mixed cell never consumes what is not there.
  */
-const depleted = 1e-12;
+export const depleted = 1e-12;
 /** Scaled concentration at which derivatives are taken where it is zero: half-order laws are infinitely steep there. */
 const nearlyNone = 1e-14;
 
@@ -68,7 +74,7 @@ export function bindKinetics(
   scale: Float64Array,
   depletion: "limited" | "cut",
   thermal?: Thermal,
-): Kinetics {
+): Bound {
   const species = chemistry.species.length;
   const n = thermal ? species + 1 : species;
   const env = new Float64Array(species + constants.length);
@@ -104,6 +110,7 @@ export function bindKinetics(
     size: n,
     thermal: thermal !== undefined,
     endures: reactions.some(({ persists }) => persists.includes(1)),
+    spends: Uint8Array.from({ length: species }, (_, i) => (reactions.some((r) => r.persists[i] === 1) ? 1 : 0)),
     scale,
     numbers: reactions.map(({ numbers }) => numbers.map((x, i) => x / scale[i])),
     production(y, at, out, to) {

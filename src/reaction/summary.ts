@@ -3,6 +3,7 @@ import type { Conditions } from "./conditions.js";
 import { conservedBy, imbalance } from "./conserved.js";
 import type { FeedExchanger } from "./exchangers.js";
 import { type HeatBalance, heatBalance } from "./heat-balance.js";
+import { depleted } from "./kinetics.js";
 import type { Port, Settled } from "./settled.js";
 
 /** Concentrations everywhere in a plant that has settled. SI; species by their index in `species`. */
@@ -44,6 +45,10 @@ export function summary(plant: Plant, conditions: Conditions, walk: Settled): St
   const concentrations = new Float64Array(count * n);
   for (let k = 0; k < count; k++) {
     for (let i = 0; i < n; i++) concentrations[k * n + i] = walk.y[k * size + i] * scale[i];
+  }
+  for (const i of conditions.spends) {
+    for (let k = i; k < concentrations.length; k += n)
+      if (concentrations[k] <= depleted * scale[i]) concentrations[k] = 0;
   }
   const temperatures = heat && Float64Array.from({ length: count }, (_, k) => walk.y[k * size + n] * scale[n]);
   const port = (name: string, flow: number, c: Float64Array, temperature: number | undefined): Port => ({

@@ -1,8 +1,8 @@
 import { compile } from "../compile/compile.js";
 import { readMoments } from "../data/moments.js";
+import { explainsNothing } from "../fit/explains-nothing.js";
 import { type FitOptions, fit } from "../fit/fit.js";
 import { withKinetics } from "../fit/kinetics.js";
-import type { Fit } from "../fit/result.js";
 import type { Duty } from "../model/duty.js";
 import type { Network } from "../model/network.js";
 import type { Asked, Rival, Study } from "../model/study.js";
@@ -148,8 +148,6 @@ function withProfiles(
   const { fit: again } = fitRival(study, best.rival, options, cancelled, true);
   return [again && !again.stopped ? { ...best, fit: again } : best, ...others];
 }
-
-const explainsNothing = (fit: Fit): boolean => fit.findings.some((f) => f.code === "explains-nothing");
 
 /** Those that may be compared: few enough that every pair is looked at. */
 function fittedRivals(ranking: readonly Ranked[]) {

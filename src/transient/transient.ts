@@ -7,6 +7,7 @@ import { RefusedError } from "../problems/refused.js";
 import { problem } from "../problems/report.js";
 import { type Conditions, conditionsOf, type DutySettings } from "../reaction/conditions.js";
 import { conservedBy } from "../reaction/conserved.js";
+import { depleted } from "../reaction/kinetics.js";
 import { steadyState } from "../reaction/steady.js";
 import { type Amounts, amountsOf, closureOf, conservedClosure } from "./balance.js";
 import { changes, feedSignals, holdings } from "./inputs.js";
@@ -123,6 +124,7 @@ export function transient(
   const end = run.stopped?.t ?? Number.POSITIVE_INFINITY;
   const n = species.length;
   const toSi = (out: Float64Array): void => {
+    for (const i of conditions.spends) if (out[i] <= depleted) out[i] = 0;
     for (let i = 0; i < scene.width; i++) out[i] = Math.max(out[i], 0) * conditions.scale[i];
   };
   const course = (name: string, node: number): Course => {

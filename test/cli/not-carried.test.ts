@@ -7,7 +7,7 @@ format: 1
 parameters: {size: {value: 100 L, between: [10 L, 1000 L]}}
 feeds: {feed: {flow: 10 L/min, to: bulk}}
 compartments:
-  bulk: {kind: dispersed, volume: size, peclet: 5, to: product}
+  bulk: {kind: dispersed, volume: size, peclet: 0.5, to: product}
 outlets: [product]
 `;
 const files = {

@@ -165,3 +165,34 @@ test("--states: all steady states over a range of one input, where they end, and
   expect(wrong.status).toBe(2);
   expect(wrong.err).toContain("--states: there is no 'feed.heat'");
 });
+
+test("where a zero-order law has used a reactant up nothing is left of it, and an infinite kill is said to be one", async () => {
+  const own = {
+    ...zeroOrder,
+    "tank.yaml": network("kind: stirred, volume: 100 L"),
+    "many.yaml": network("kind: stirred, repeat: 3, volume: 60 L"),
+    "duty.yaml": `${duty}report: [log-removal of A, A at product]\n`,
+  };
+  for (const vessel of ["tank.yaml", "many.yaml"]) {
+    const { document } = await json(["simulate", vessel, "--duty", "duty.yaml"], { files: own });
+    expect(document).toMatchObject({ report: [{ value: null, why: "infinite" }, { value: 0 }] });
+    const { out } = await backmix(["simulate", vessel, "--duty", "duty.yaml"], { files: own });
+    expect(out.replace(/\s+/g, " ")).toContain(
+      "log-removal of A: infinite, since in this model nothing at all of it leaves",
+    );
+  }
+  // What a first-order law leaves is a result, however little.
+  const fast = { ...own, "chemistry.yaml": chemistry("k * A", "1e14 1/min") };
+  const { document } = await json(["simulate", "tank.yaml", "--duty", "duty.yaml"], { files: fast });
+  expect(Number(document.report[0].value)).toBeCloseTo(15, 6);
+});
+
+test("the same at the end of a start-up", async () => {
+  const own = {
+    ...zeroOrder,
+    "tank.yaml": network("kind: stirred, volume: 100 L"),
+    "duty.yaml": `${duty}report: [log-removal of A]\n`,
+  };
+  const { document } = await json(["simulate", "tank.yaml", "--duty", "duty.yaml", "--transient"], { files: own });
+  expect(document).toMatchObject({ report: [{ value: null, why: "infinite" }] });
+});

@@ -1,3 +1,4 @@
+import { explainsNothing } from "../../fit/explains-nothing.js";
 import type { Asked } from "../../model/study.js";
 import type {
   Answered,
@@ -67,6 +68,7 @@ function rankedJson({ rival, fit, standing, survives, problems }: Ranked): objec
     difference: finite(standing.difference),
     weight: standing.weight,
     survives,
+    ...(explainsNothing(fit) ? { because: ["explains no more than a flat line"] } : {}),
     fit: fitJson(fit, rival.network.units.time),
   };
 }

@@ -105,5 +105,15 @@ function figuresText({ figures, bounds, premises }: Prediction): string {
   });
   const columns = bounded ? [right("if segregated"), right("if mixed at once")] : [];
   const says = premises ? `  ${premises.says}` : "";
-  return [table([{ title: "figure" }, right("value"), ...columns], rows), says].filter((t) => t !== "").join("\n\n");
+  return [table([{ title: "figure" }, right("value"), ...columns], rows), infiniteText(figures), says]
+    .filter((t) => t !== "")
+    .join("\n\n");
+}
+
+/** What it means that a kill is infinite; empty where none is. */
+function infiniteText(figures: readonly Figure[]): string {
+  const spent = figures.filter((f) => f.why === "infinite" && f.name.startsWith("log-removal"));
+  return spent.length === 0
+    ? ""
+    : `  ${spent.map((f) => f.name).join(", ")}: infinite, since in this model nothing at all of it leaves. A test shows no more than down to its limit of detection.`;
 }

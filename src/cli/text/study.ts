@@ -1,3 +1,4 @@
+import { explainsNothing } from "../../fit/explains-nothing.js";
 import type { Fit } from "../../fit/result.js";
 import type { Problem } from "../../problems/problem.js";
 import { chance, estimateLine } from "../../report/digits.js";
@@ -17,7 +18,9 @@ export function studyText(result: StudyResult, answer: readonly AnswerLine[], re
     ? " (interrupted: what was finished)"
     : result.converged
       ? ""
-      : " (a fit did not converge)";
+      : result.ranking.some((r) => r.fit && !r.fit.converged)
+        ? " (a fit did not converge)"
+        : " (a network was not fitted)";
   return blocks(
     `${result.study.title}${marked}`,
     answerText(answer),
@@ -61,7 +64,8 @@ function rankingTable({ ranking }: StudyResult): string {
 function verdict(fit: Fit | undefined, survives: boolean, problems: readonly Problem[]): string {
   if (!fit) return `no fit: ${problems[0]?.message ?? "interrupted"}`;
   if (fit.stopped) return "interrupted before its end: not compared";
-  return survives ? "" : "ruled out";
+  if (survives) return "";
+  return explainsNothing(fit) ? "no better than a flat line" : "ruled out";
 }
 
 function predictionsTable({ predictions }: StudyResult): string {

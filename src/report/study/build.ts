@@ -1,3 +1,4 @@
+import { explainsNothing } from "../../fit/explains-nothing.js";
 import type { Ranked, StudyResult } from "../../study/result.js";
 import type { Spread } from "../../study/spread-shares.js";
 import { dimensions } from "../../units/dimension.js";
@@ -99,11 +100,13 @@ function rivalRow(r: Ranked, place: number, result: StudyResult): Rival {
   const lead = result.ranking[0];
   const verdict = !r.fit
     ? `could not be fitted: ${r.problems[0]?.message ?? "no fit was found"}`
-    : place === 0
-      ? "explains the tests best"
-      : r.survives
-        ? "fits about as well: not ruled out"
-        : `leaves ${ratioWords(r, lead)} as much unexplained as the best`;
+    : explainsNothing(r.fit)
+      ? "explains the tests no better than a flat line"
+      : place === 0
+        ? "explains the tests best"
+        : r.survives
+          ? "fits about as well: not ruled out"
+          : `leaves ${ratioWords(r, lead)} as much unexplained as the best`;
   return {
     network: r.rival.network.title,
     freeParameters: r.fit?.freeParameters ?? 0,
