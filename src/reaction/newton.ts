@@ -45,6 +45,8 @@ interface Enough {
 }
 
 const rounding = 1e-10;
+/** What a step near the end may leave of a component that stays positive: steep kinetics leave many decades less than enters. */
+const atTheEnd = 1e-30;
 /** No step is asked for more accurately than this. */
 const tightest = 1e-5;
 const byElimination: Enough = { relative: 1e-11, absolute: 1e-16, balanced: 0 };
@@ -133,7 +135,7 @@ function iterate(system: System, w: Workspace, y: Float64Array, limit: number, e
     const relative = relativeStep(w.step, y, enough);
     // Near the end rounding decides whether the residual still falls: full steps are then taken as they are.
     small = relative.largest <= rounding ? small + 1 : 0;
-    const next = small > 0 ? take(system, w, y, 1) : descend(system, w, y, norm);
+    const next = small > 0 ? take(system, w, y, 1, Number.POSITIVE_INFINITY, atTheEnd) : descend(system, w, y, norm);
     if (next === undefined) break;
     forcing = Math.max(tightest, Math.min(forcing, 0.5 * (next / norm) ** 2));
     norm = next;
@@ -196,8 +198,12 @@ function take(
   y: Float64Array,
   share: number,
   below = Number.POSITIVE_INFINITY,
+  fall = system.fall,
 ): number | undefined {
-  for (let i = 0; i < y.length; i++) w.trial[i] = Math.max(y[i] + share * w.step[i], system.fall * y[i]);
+  for (let i = 0; i < y.length; i++) {
+    const next = y[i] + share * w.step[i];
+    w.trial[i] = next > 0 ? Math.max(next, fall * y[i]) : system.fall * y[i];
+  }
   const norm = system.residual(w.trial, w.fTrial) ? size(w.fTrial) : Number.NaN;
   if (!(norm <= below) || !Number.isFinite(norm)) return undefined;
   y.set(w.trial);

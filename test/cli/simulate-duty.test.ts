@@ -185,6 +185,10 @@ test("where a zero-order law has used a reactant up nothing is left of it, and a
   const fast = { ...own, "chemistry.yaml": chemistry("k * A", "1e14 1/min") };
   const { document } = await json(["simulate", "tank.yaml", "--duty", "duty.yaml"], { files: fast });
   expect(Number(document.report[0].value)).toBeCloseTo(15, 6);
+  const series = await json(["simulate", "many.yaml", "--duty", "duty.yaml"], {
+    files: { ...own, "chemistry.yaml": chemistry("k * A", "1e7 1/min") },
+  });
+  expect(Number(series.document.report[0].value)).toBeCloseTo(3 * Math.log10(2e7 + 1), 6);
 });
 
 test("the same at the end of a start-up", async () => {
