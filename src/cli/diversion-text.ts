@@ -15,10 +15,14 @@ export function diversionText(
   const lines = found.map(({ line, window, draws }) => {
     const what = line.text.replace(/^time /, "");
     if (!window) return `  divert for '${what}': no draw of ${draws} gets there`;
-    const { from, to, touched, volume } = window;
+    const { from, to, touched, volume, stillAtEnd } = window;
     const left = formatQuantity(volume, network.units.unitFor(dimensions.volume));
     const late = delay > 0 ? `, an analyser that is ${formatQuantity(delay, time)} late counted in` : "";
-    return `  divert for '${what}': from ${formatQuantity(from, time)} to ${formatQuantity(to, time)}, ${left} turned away${late}; ${formatNumber(100 * touched, 3)} % of ${draws} draws get there`;
+    const still =
+      stillAtEnd > 0
+        ? `; in ${formatNumber(100 * stillAtEnd, 3)} % of these it is still ${line.limit?.side ?? "beyond"} when the run ends: no window ends there`
+        : "";
+    return `  divert for '${what}': from ${formatQuantity(from, time)} to ${formatQuantity(to, time)}, ${left} turned away${late}; ${formatNumber(100 * touched, 3)} % of ${draws} draws get there${still}`;
   });
   return [
     ...lines,
@@ -31,6 +35,7 @@ export const diversionJson = ({ network }: Plant, found: readonly DiversionWindo
     name: line.text,
     draws,
     touched: window?.touched ?? 0,
+    stillAtEnd: window?.stillAtEnd ?? 0,
     from: quantity(window?.from, time),
     to: quantity(window?.to, time),
     volume: quantity(window?.volume ?? 0, network.units.unitFor(dimensions.volume)),

@@ -43,6 +43,12 @@ export function estimateLine(estimate: Estimate): string {
   return interval === "" || interval === "exact" ? withUnit : `${withUnit} (${interval})`;
 }
 
+/** The same of a figure of a duty: a time beyond a limit without an end is told in words. */
+export const figureLine = (name: string, estimate: Estimate): string =>
+  /^time /.test(name) && estimate.value === Number.POSITIVE_INFINITY
+    ? "for good (still so when the duty is over)"
+    : estimateLine(estimate);
+
 /** A probability without more certainty than there is: 88 %, above 99 %, below 1 %. */
 export function chance(p: number): string {
   if (!Number.isFinite(p)) return "unknown";

@@ -1,5 +1,5 @@
 import { cautionsFor } from "./cautions.js";
-import { chance, estimateLine } from "./digits.js";
+import { chance, estimateLine, figureLine } from "./digits.js";
 import type { StudyReport } from "./input.js";
 
 /** The study on one page of Markdown: the answer, what it makes, what was fitted, which rivals, cautions, provenance. */
@@ -11,13 +11,13 @@ export function writeSummary(report: StudyReport): string {
     table(
       "What it makes",
       ["duty", "quantity", "value (95 %)"],
-      report.predictions.map((q) => [q.duty, q.name, estimateLine(q.estimate)]),
+      report.predictions.map((q) => [q.duty, q.name, figureLine(q.name, q.estimate)]),
     ),
     bullets("Steady states", report.states ?? []),
     table(
       "Changes",
       ["change", "quantity", "value (95 %)", "chance of being better"],
-      report.changes.map((c) => [c.name, c.quantity, estimateLine(c.estimate), chance(c.probabilityBetter)]),
+      report.changes.map((c) => [c.name, c.quantity, figureLine(c.quantity, c.estimate), chance(c.probabilityBetter)]),
     ),
     bullets(
       "What it takes",

@@ -22,6 +22,7 @@ export function diversionWindows(operation: Operation, rows: readonly Row[], del
   const { duty } = operation;
   const lines = duty.report.filter((line) => line.what === "time-beyond");
   const found = lines.map((): (readonly Span[])[] => []);
+  const open = lines.map(() => 0);
   for (const row of rows) {
     const { plant } = plantOf(operation, row);
     if (!plant) continue;
@@ -31,12 +32,17 @@ export function diversionWindows(operation: Operation, rows: readonly Row[], del
     const beyond = transientFigures(plant, { ...duty, report: lines }, run, settings).map((f) => f.beyond);
     beyond.forEach((b, k) => {
       if (b) found[k].push(b.spans);
+      if (b?.stillAtEnd) open[k]++;
     });
   }
   const { plant } = plantOf(operation);
   return lines.map((line, k) => ({
     line,
-    window: diversionOf(found[k], { delay, flow: plant?.columns.inflow[plant.exit.get(line.at ?? "") ?? 0] ?? 0 }),
+    window: diversionOf(found[k], {
+      delay,
+      flow: plant?.columns.inflow[plant.exit.get(line.at ?? "") ?? 0] ?? 0,
+      open: open[k],
+    }),
     draws: found[k].length,
   }));
 }

@@ -8,6 +8,8 @@ export interface Diversion {
   readonly touched: number;
   /** m3 that leave between. */
   readonly volume: number;
+  /** Share of the touched draws in which it is still beyond where the run ends: what comes then no window holds. */
+  readonly stillAtEnd: number;
 }
 
 /**
@@ -18,11 +20,17 @@ export interface Diversion {
  * @param delay s, above 0: how much later than it happens an analyser tells; what it tells is acted on that late, so that a window
  *   that is opened by it must begin earlier by as much, and is closed later
  * @param flow  m3/s
+ * @param open  in how many draws the last stretch ends only because the run does
  * @returns undefined where no draw is beyond
  */
 export function diversionOf(
   draws: readonly (readonly Span[])[],
-  { tail = 0.05, delay = 0, flow }: { readonly tail?: number; readonly delay?: number; readonly flow: number },
+  {
+    tail = 0.05,
+    delay = 0,
+    flow,
+    open = 0,
+  }: { readonly tail?: number; readonly delay?: number; readonly flow: number; readonly open?: number },
 ): Diversion | undefined {
   const touched = draws.filter((spans) => spans.length > 0);
   if (touched.length === 0) return undefined;
@@ -30,7 +38,8 @@ export function diversionOf(
   const ends = touched.map((spans) => spans[spans.length - 1].to).sort((a, b) => a - b);
   const from = Math.max(0, quantile(starts, tail) - delay);
   const to = quantile(ends, 1 - tail) + delay;
-  return { from, to, touched: touched.length / draws.length, volume: flow * (to - from) };
+  const stillAtEnd = open / touched.length;
+  return { from, to, touched: touched.length / draws.length, volume: flow * (to - from), stillAtEnd };
 }
 
 /** Between the two nearest of sorted values. */

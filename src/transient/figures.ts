@@ -17,6 +17,8 @@ export interface Beyond {
   /** m3 that left meanwhile, and how much of the species it held (SI). */
   readonly volume: number;
   readonly amount: number;
+  /** Is it still so where the run ends? Then the time is that within the run. */
+  readonly stillAtEnd: boolean;
 }
 
 /**
@@ -57,6 +59,7 @@ function beyondFigure(plant: Plant, line: Reported, run: Transient, end: number)
   const i = run.species.indexOf(line.of);
   const spans = beyond(look, n, i, limit.value.of([]), limit.side, end);
   const value = spans.reduce((sum, { from, to }) => sum + to - from, 0);
+  const stillAtEnd = spans.length > 0 && spans[spans.length - 1].to >= end;
   const flow = plant.columns.inflow[plant.exit.get(at) ?? 0];
   const row = new Float64Array(n);
   let amount = 0;
@@ -66,7 +69,7 @@ function beyondFigure(plant: Plant, line: Reported, run: Transient, end: number)
     look.integral(from, row);
     amount -= flow * row[i];
   }
-  return { name: line.text, value, why: undefined, unit, beyond: { spans, volume: flow * value, amount } };
+  return { name: line.text, value, why: undefined, unit, beyond: { spans, volume: flow * value, amount, stillAtEnd } };
 }
 
 /** What is fed and what leaves at a time; in a closed vessel, what there was at the start and is then. */

@@ -27,7 +27,7 @@ export function roughRun(plant: Plant, duty: Duty, settings: DutySettings = {}):
 
 /**
  * Figures of a steady state with those that only time shows put in: what is above or below a limit for how long, from the
- * start of the duty until it is over.
+ * start of the duty until it is over; infinite where it is still so then, since from there on nothing changes.
  */
 export function withTimes(
   plant: Plant,
@@ -36,6 +36,9 @@ export function withTimes(
   settings: DutySettings = {},
 ): readonly Figure[] {
   if (!asksForTime(duty)) return figures;
-  const times = transientFigures(plant, duty, roughRun(plant, duty, settings), settings);
+  const run = roughRun(plant, duty, settings);
+  const times = transientFigures(plant, duty, run, settings).map(
+    (f): Figure => (f.beyond?.stillAtEnd ? { ...f, value: Number.POSITIVE_INFINITY, why: "infinite" } : f),
+  );
   return figures.map((f, k) => (duty.report[k]?.what === "time-beyond" ? times[k] : f));
 }

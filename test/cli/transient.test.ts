@@ -60,6 +60,15 @@ describe("a duty in time", () => {
     expect(Math.abs(at(document, "closure.A") as number)).toBeLessThan(1e-9);
   });
 
+  test("says what is still beyond its limit where the run ends", async () => {
+    const { document } = await json(simulate("tank.yaml", "upset.yaml", "--until", "4.5 min"), { files });
+    expect(at(document, "report.0.stillAtEnd")).toBe(true);
+    const { out } = await backmix(simulate("tank.yaml", "upset.yaml", "--until", "4.5 min"), { files });
+    expect(out).toMatch(/at least 1\.61 min .* to 4\.5 min, still above at the end of the run/);
+    const late = await json(simulate("tank.yaml", "upset.yaml", "--until", "60 min"), { files });
+    expect(at(late.document, "report.0.stillAtEnd")).toBe(false);
+  });
+
   test("writes curves as a table or as a picture, and says when to divert", async () => {
     const csv = await backmix(simulate("tank.yaml", "upset.yaml", "-o", "curves.csv", "--draws", "20"), { files });
     expect(csv.status).toBe(0);

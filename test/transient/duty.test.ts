@@ -5,7 +5,10 @@ import { parseDuty } from "../../src/parse/duty.js";
 import { parseNetwork } from "../../src/parse/network.js";
 import { collector } from "../../src/problems/report.js";
 import { networkSettings } from "../../src/reaction/conditions.js";
+import { figuresOf } from "../../src/reaction/figures.js";
+import { steadyState } from "../../src/reaction/steady.js";
 import { transientFigures } from "../../src/transient/figures.js";
+import { withTimes } from "../../src/transient/in-time.js";
 import { passageOf } from "../../src/transient/passage.js";
 import { transient } from "../../src/transient/transient.js";
 
@@ -65,6 +68,28 @@ describe("a duty in time", () => {
     expect(conversion.value).toBeCloseTo(0.5, 8);
     const passage = passageOf(run.look("product"), 2, 0, 36_000);
     expect((passage.t99 ?? 0) / 60).toBeCloseTo(5 + Math.log(100) / 0.04, 4);
+  });
+
+  test("what is still beyond its limit at the end is told as such, and has no end where the duty is over", () => {
+    const steps = (lasting: string) =>
+      read(
+        tank,
+        `feeds: {feed: {A: {from: 1 mol/L, to: 2 mol/L, start: 5 min${lasting}}}}\nreport: [time A at product above 0.75 mol/L, A at product]`,
+      );
+    for (const [lasting, still] of [
+      ["", true],
+      [", lasting: 40 min", false],
+    ] as const) {
+      const { plant, duty } = steps(lasting);
+      const run = transient(plant, duty.chemistry, duty, minutes(0, 600), { at: [] });
+      const figures = transientFigures(plant, duty, run);
+      expect(figures[0].beyond?.stillAtEnd).toBe(still);
+      const state = steadyState(plant, duty.chemistry, duty);
+      const [over, level] = withTimes(plant, duty, figuresOf(plant, duty, state));
+      expect(over.why).toBe(still ? "infinite" : undefined);
+      expect(Number.isFinite(over.value)).toBe(!still);
+      expect(level.value).toBeCloseTo(500, 6);
+    }
   });
 
   test("grams by the molar mass, in feeds, limits and what is there at the start", () => {

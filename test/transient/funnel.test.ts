@@ -115,7 +115,9 @@ describe("a diversion window", () => {
       to: 495.05 + 3,
       touched: 100 / 101,
       volume: 2 * (498.05 - 2.95),
+      stillAtEnd: 0,
     });
+    expect(diversionOf(draws, { flow: 2, open: 25 })?.stillAtEnd).toBe(0.25);
     expect(diversionOf([[], []], { flow: 2 })).toBeUndefined();
   });
 

@@ -60,6 +60,7 @@ export function transientJson(
               })),
               volume: quantity(f.beyond.volume, network.units.unitFor(dimensions.volume)),
               amount: quantity(f.beyond.amount, amount(i)),
+              stillAtEnd: f.beyond.stillAtEnd,
             }
           : {}),
       };

@@ -91,6 +91,7 @@ const asPercent = /^(conversion|yield|selectivity)/;
 
 /** A figure as people say it: fractions in %. */
 export function reportedText({ name, value, unit, why }: Figure): string {
+  if (why === "infinite" && /^time /.test(name)) return "for good";
   if (why !== undefined) return /^time /.test(name) ? "in time only (--transient)" : why;
   return asPercent.test(name) ? `${formatNumber(100 * value)} %` : formatQuantity(value, unit);
 }

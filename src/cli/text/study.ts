@@ -1,7 +1,7 @@
 import { explainsNothing } from "../../fit/explains-nothing.js";
 import type { Fit } from "../../fit/result.js";
 import type { Problem } from "../../problems/problem.js";
-import { chance, estimateLine } from "../../report/digits.js";
+import { chance, figureLine } from "../../report/digits.js";
 import type { AnswerLine } from "../../report/input.js";
 import { reportAims } from "../../report/study/asked.js";
 import { decisionWords } from "../../report/study/decision-words.js";
@@ -74,7 +74,7 @@ function predictionsTable({ predictions }: StudyResult): string {
     const shown = people(name, unit);
     const bound = (si: number | undefined): string => (si === undefined ? "" : formatNumber(inUnit(si, shown)));
     const ends = [bound(bounds?.segregated), bound(bounds?.maximumMixedness)];
-    return { by: rival.network.title, cells: [duty.title, name, estimate(value, interval95, shown), ...ends] };
+    return { by: rival.network.title, cells: [duty.title, name, estimate(name, value, interval95, shown), ...ends] };
   });
   return tableBy(
     [
@@ -97,7 +97,7 @@ function changesTable({ changes }: StudyResult): string {
       const shown = people(name, unit);
       const better = probabilityBetter === undefined ? "" : chance(probabilityBetter);
       const today = formatNumber(inUnit(before, shown), 3);
-      return { by, cells: [change.title, name, today, estimate(value, interval95, shown), better] };
+      return { by, cells: [change.title, name, today, estimate(name, value, interval95, shown), better] };
     });
   });
   return tableBy(
@@ -157,7 +157,7 @@ function tableBy(columns: readonly Column[], rows: readonly Row[]): string {
 const people = (name: string, unit: Unit): Unit =>
   /^(conversion|yield|selectivity)/.test(name) ? { ...unit, name: "%", factor: 0.01 } : unit;
 
-function estimate(value: number, interval: readonly [number, number] | undefined, unit: Unit): string {
+function estimate(name: string, value: number, interval: readonly [number, number] | undefined, unit: Unit): string {
   const [low, high] = (interval ?? []).map((v) => inUnit(v, unit));
-  return estimateLine({ value: inUnit(value, unit), unit: unit.name, low, high });
+  return figureLine(name, { value: inUnit(value, unit), unit: unit.name, low, high });
 }

@@ -96,16 +96,18 @@ function figuresText(
     if (!f.beyond) return [f.name, reportedText(f), ""];
     const i = run.species.indexOf(duty.report[k].of);
     const amount = units.unitFor(times(duty.concentrations[i], dimensions.volume));
-    const { spans, volume } = f.beyond;
+    const { spans, volume, stillAtEnd } = f.beyond;
     const at = (t: number): string => formatNumber(inUnit(t, clock.unit));
     const listed = spans.slice(0, mostSpans).map(({ from, to }) => `${at(from)} to ${at(to)}`);
     const more = spans.length > mostSpans ? ` and ${spans.length - mostSpans} more` : "";
-    const when = spans.length === 0 ? "never" : `${listed.join(", ")}${more} ${clock.unit.name}`;
+    const side = duty.report[k].limit?.side ?? "beyond";
+    const still = stillAtEnd ? `, still ${side} at the end of the run` : "";
+    const when = spans.length === 0 ? "never" : `${listed.join(", ")}${more} ${clock.unit.name}${still}`;
     const left =
       spans.length === 0 || volume === 0
         ? ""
         : `; meanwhile ${formatQuantity(volume, units.unitFor(dimensions.volume))} left with ${formatQuantity(f.beyond.amount, amount)} of ${duty.report[k].of}`;
-    return [f.name, formatQuantity(f.value, clock.unit), `${when}${left}`];
+    return [f.name, `${stillAtEnd ? "at least " : ""}${formatQuantity(f.value, clock.unit)}`, `${when}${left}`];
   });
   return table([{ title: "figure, at the end" }, { title: "value", align: "right" }, { title: "" }], rows);
 }

@@ -1,7 +1,7 @@
 import { plotBars } from "../../draw/bars.js";
 import { drawIntervals, type IntervalRow, intervalsTable } from "../../draw/intervals.js";
 import { formatNumber } from "../../units/format.js";
-import { estimateLine } from "../digits.js";
+import { figureLine } from "../digits.js";
 import { type Cell, figure, type Html, list, section, table } from "../html.js";
 import type { Prediction, StudyReport } from "../input.js";
 import { estimateRow, grouped } from "./rows.js";
@@ -83,6 +83,6 @@ function spreads(predictions: readonly Prediction[]): Html[] {
 function predictionRow(p: Prediction): readonly IntervalRow[] {
   const { value, low, high } = p.estimate;
   if (value === undefined || low === undefined || high === undefined) return [];
-  const text = estimateLine(p.estimate);
+  const text = figureLine(p.name, p.estimate);
   return [{ label: p.duty, value, low, high, text, ...(p.bounds ? { bounds: p.bounds } : {}) }];
 }

@@ -1,5 +1,5 @@
 import type { ChangedFigure, ChangeOutcome, StudyResult } from "../../study/result.js";
-import { chance, estimateLine } from "../digits.js";
+import { chance, estimateLine, figureLine } from "../digits.js";
 import type { AnswerLine } from "../input.js";
 import { aimWords } from "./aim-words.js";
 import { decisionWords, tellingWords } from "./decision-words.js";
@@ -72,7 +72,7 @@ function makes(result: StudyResult): string[] {
     const p = first.find((x) => x.duty === duty);
     if (!p) return [];
     const unit = readingUnit(duty, p.name, p.unit);
-    const now = `${duty.title}: ${p.name} ${estimateLine(estimate(p.value, p.interval95, unit))}`;
+    const now = `${duty.title}: ${p.name} ${figureLine(p.name, estimate(p.value, p.interval95, unit))}`;
     if (!p.bounds || p.bounds.apply === "no") return [`${now}.`];
     if (p.bounds.position === undefined) return [`${now}; with these rates the residence times alone fix it.`];
     const low = estimateLine(estimate(Math.min(p.bounds.segregated, p.bounds.maximumMixedness), undefined, unit));
@@ -91,8 +91,8 @@ function bestChange(result: StudyResult): string[] {
   const { c, f } = told[0];
   const none = gain(f) > 0 ? "" : "None of the changes looked at is likely to help. ";
   const unit = readingUnit(f.duty, f.name, f.unit);
-  const now = estimateLine(estimate(f.before, undefined, unit));
-  const then = estimateLine(estimate(f.value, f.interval95, unit));
+  const now = figureLine(f.name, estimate(f.before, undefined, unit));
+  const then = figureLine(f.name, estimate(f.value, f.interval95, unit));
   const by = estimateLine(differenceEstimate(f.value - f.before, f.difference95, unit));
   const sure = f.probabilityBetter === undefined ? "" : `; chance of being better ${chance(f.probabilityBetter)}`;
   return [`${none}${c.change.title}: ${f.name} from ${now} to ${then}, by ${by}${sure}.`];
