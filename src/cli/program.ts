@@ -243,7 +243,11 @@ function addSweep(root: Command, { perform, inputs, io }: Stage): void {
       "another value of a parameter, constant or feed.flow, taken as known; repeatable",
       collect,
     )
-    .option("--draws <n>", "draws of what is unsure at each point; 0: middle values alone", whole(0), 100)
+    .option(
+      "--draws <n>",
+      "draws of what is unsure at each point; 0: middle values alone; default by the size of the network, 100 to 1000",
+      whole(0),
+    )
     .option("--seed <n>", "seed of the draws", whole(0), 1)
     .option("-o, --output <file>", "with --over: the table to F.csv, or the curves to F.svg or F.png")
     .action((network: string, options) =>

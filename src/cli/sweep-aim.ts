@@ -11,7 +11,7 @@ import { aimJson } from "./json/sweep.js";
 import { type Outcome, UsageError } from "./outcome.js";
 import { progressOn } from "./progress.js";
 import { inputNamed, rangeFrom } from "./ranges.js";
-import type { Asked, SweepOptions } from "./sweep-options.js";
+import { type Asked, carriedBeside, type SweepOptions } from "./sweep-options.js";
 import { aimText } from "./text/aim.js";
 
 /** `sweep --aim … --by name`: the values of one input at which a figure is what it shall be. Exit 1 where none is. */
@@ -37,7 +37,7 @@ export function aimOutcome({ operation, rows, carries }: Asked, options: SweepOp
   const reachable = found.crossings.length > 0 || found.met.length > 0;
   return {
     status: found.stopped ? 130 : reachable ? 0 : 1,
-    text: aimText(operation, found, carries),
+    text: aimText(operation, found, carriedBeside(carries, rows, [input])),
     json: {
       ok: reachable && !found.stopped,
       network: operation.network.title,

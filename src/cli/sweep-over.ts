@@ -8,7 +8,7 @@ import { sweepCsv, sweepJson } from "./json/sweep.js";
 import { type Outcome, UsageError } from "./outcome.js";
 import { progressOn } from "./progress.js";
 import { axisFrom } from "./ranges.js";
-import type { Asked, SweepOptions } from "./sweep-options.js";
+import { type Asked, carriedBeside, type SweepOptions } from "./sweep-options.js";
 import { curvesOn } from "./text/plot.js";
 import { sweepText } from "./text/sweep.js";
 import { blocks } from "./text/table.js";
@@ -38,7 +38,14 @@ export async function overOutcome(asked: Asked, options: SweepOptions, { io }: C
   return {
     status: found.stopped ? 130 : possible ? 0 : 1,
     text: blocks(
-      sweepText(found, asked.carries),
+      sweepText(
+        found,
+        carriedBeside(
+          asked.carries,
+          rows,
+          axes.map((a) => a.input),
+        ),
+      ),
       curvesOn(io, () => terminalCurves(found)),
       output === undefined ? "" : `  written: ${output}`,
     ),

@@ -5,6 +5,7 @@ import { compile } from "../compile/compile.js";
 import { fit as fitNetwork } from "../fit/fit.js";
 import { withKinetics } from "../fit/kinetics.js";
 import type { Fit } from "../fit/result.js";
+import type { Duty } from "../model/duty.js";
 import type { Network } from "../model/network.js";
 import type { Trial } from "../model/trial.js";
 import { parseDuty } from "../parse/duty.js";
@@ -16,6 +17,7 @@ import { inputsOf } from "../study/inputs.js";
 import type { Operation } from "../study/operate.js";
 import { operationOf } from "../study/operation.js";
 import { rowsFor, sourcesOf } from "../study/sources.js";
+import { changes } from "../transient/inputs.js";
 import { formatNumber } from "../units/format.js";
 import type { Context } from "./context.js";
 import { InputError, type Outcome, UsageError } from "./outcome.js";
@@ -58,12 +60,19 @@ function ask(file: string, options: SweepOptions, { inputs, io }: Context): Aske
   const operation: Operation = { ...found, values: { ...found.values, ...set } };
   const known = new Set(inputsOf(operation).map((i) => i.name));
   if (known.size === 0) throw new UsageError("neither network nor duty has an input by name");
-  const sources = options.draws === 0 ? [] : sourcesOf(operation, fit);
-  const draws =
-    sources.length === 0 ? [] : drawsOf(withKinetics(network, trials), fit, options.draws, options.seed).settings;
+  const many = options.draws ?? usualDraws(plant.columns.size, duty, options);
+  const sources = many === 0 ? [] : sourcesOf(operation, fit);
+  const draws = sources.length === 0 ? [] : drawsOf(withKinetics(network, trials), fit, many, options.seed).settings;
   // What --set says is known.
   const rows = rowsFor(operation, draws, options.seed).map((r) => ({ ...r, vessel: { ...r.vessel, ...set } }));
   return { operation, rows, carries: rows.length === 0 ? "" : carried(fit, sources.length, rows.length) };
+}
+
+/** More where they cost little: a share of the draws is known to some 1/sqrt(draws). */
+function usualDraws(nodes: number, duty: Duty, { aim }: SweepOptions): number {
+  const inTime = changes(duty) || duty.report.some((line) => line.what === "time-beyond");
+  if (inTime || nodes > 50) return 100;
+  return nodes > 10 || aim === undefined ? 400 : 1000;
 }
 
 function carried(fit: Fit | undefined, sources: number, rows: number): string {

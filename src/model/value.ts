@@ -23,6 +23,8 @@ export interface Value {
   of(env: Env): number;
   /** One standard deviation as the file states it, in SI; undefined where none is stated. */
   readonly sd: ((env: Env) => number) | undefined;
+  /** Is that a share of the value, so that it grows with it? */
+  readonly relative?: true;
   /** Could it not be found? Then it is NaN, and the reason is reported. */
   readonly unknown?: true;
 }

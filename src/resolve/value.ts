@@ -105,6 +105,7 @@ export function bindValue(
     uses: namesIn(whole),
     of,
     sd: uncertainty && spreadOf(uncertainty, of),
+    ...(uncertainty && uncertainty.kind !== "absolute" ? { relative: true } : {}),
   };
 }
 

@@ -55,6 +55,8 @@ export interface Reached {
   readonly figure: Figure;
   /** Share of the draws that meet the aim there; undefined without draws. */
   readonly share: number | undefined;
+  /** Two standard errors of that share, for so many draws were taken and no more; undefined without draws. */
+  readonly shareError: number | undefined;
   /** With a confidence: what so many of the draws keep at least (or at most). */
   readonly kept: number | undefined;
 }
@@ -122,6 +124,7 @@ export function solveAim(operation: Operation, aim: Aim, range: AimRange, option
         at: at(share),
         figure,
         share: values.length > 0 ? meeting / values.length : undefined,
+        shareError: values.length > 0 ? 2 * standardError(meeting, values.length) : undefined,
         kept: sure === undefined ? undefined : kept(share),
       },
     ];
@@ -195,3 +198,9 @@ const fewestDraws = 20;
 
 const squashed = (x: number, scale: number): number =>
   Number.isFinite(x) ? x / (Math.abs(x) + scale) : Number.isNaN(x) ? x : Math.sign(x);
+
+/** Standard error of a share of draws, by the rule that adds two draws of each sort (A. Agresti, B.A. Coull, Am. Stat. 52 (1998) 119-126, from memory). */
+function standardError(meeting: number, draws: number): number {
+  const share = (meeting + 2) / (draws + 4);
+  return Math.sqrt((share * (1 - share)) / (draws + 4));
+}

@@ -1,5 +1,6 @@
 import type { Settings } from "../compile/plant.js";
 import type { AimAsked, Asked, InputRange, Study, SweepAsked } from "../model/study.js";
+import { changes } from "../transient/inputs.js";
 import { type AimResult, solveAim } from "./aim.js";
 import { changedVessel } from "./changed.js";
 import type { RivalDraws } from "./draws-of.js";
@@ -10,9 +11,11 @@ import type { Answered, Ranked } from "./result.js";
 import { rowsFor } from "./sources.js";
 import { type Sweep, spaced, sweep, type Watch } from "./sweep.js";
 
-/** Draws behind the bands of a sweep and behind an aim: fewer than behind an interval, for they are taken at every point. */
-const sweepDraws = 40;
-const aimDraws = 60;
+/** Draws behind a sweep and an aim, taken at every point: all where they cost little, else some of them. */
+const mostCheap = 50;
+const someDraws = 60;
+const fewerOf = ({ settings }: RivalDraws, { plant }: Ranked, { duty }: Asked): readonly Settings[] =>
+  (plant?.columns.size ?? 0) <= mostCheap && !changes(duty) ? settings : settings.slice(0, someDraws);
 
 /** A sweep that a study asks for, on one rival with its fitted values. */
 export function sweepAsked(
@@ -23,7 +26,7 @@ export function sweepAsked(
   watch: Watch,
 ): Answered<SweepAsked, Sweep> {
   const head = { asked, rival: ranked.rival };
-  const made = operationAsked(study, ranked, asked, draws.settings.slice(0, sweepDraws));
+  const made = operationAsked(study, ranked, asked, fewerOf(draws, ranked, asked));
   if ("skipped" in made) return { ...head, skipped: made.skipped };
   const axes = [];
   for (const range of asked.over) {
@@ -44,7 +47,7 @@ export function aimAsked(
   watch: Watch,
 ): Answered<AimAsked, AimResult> {
   const head = { asked, rival: ranked.rival };
-  const made = operationAsked(study, ranked, asked, draws.settings.slice(0, aimDraws));
+  const made = operationAsked(study, ranked, asked, fewerOf(draws, ranked, asked));
   if ("skipped" in made) return { ...head, skipped: made.skipped };
   const range = rangeIn(made.inputs, asked.by);
   if ("skipped" in range) return { ...head, skipped: range.skipped };

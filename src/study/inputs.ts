@@ -1,9 +1,10 @@
 import { evaluateNames } from "../compile/evaluate.js";
 import type { Value } from "../model/value.js";
-import { constantsOf, networkSettings } from "../reaction/conditions.js";
+import { constantsOf, dutyInputs, networkSettings } from "../reaction/conditions.js";
 import { siUnit } from "../units/describe.js";
 import type { Dimension } from "../units/dimension.js";
 import type { Unit } from "../units/unit.js";
+import { sameSide } from "./draws.js";
 import type { Operation, Row } from "./operate.js";
 
 /** Something that a duty in a network depends on and that can be given another value, by the name that people use. */
@@ -19,6 +20,8 @@ export interface Input {
   /** Declared bounds, SI. */
   readonly between: readonly [number, number] | undefined;
   readonly log: boolean;
+  /** One standard deviation that is declared of it, where it has the value `at`, SI; undefined: taken to be known, or fitted. */
+  sd?(at: number): number;
 }
 
 /**
@@ -30,10 +33,17 @@ export function inputsOf(operation: Operation): Input[] {
   const env = evaluateNames(network, { ...values, ...networkSettings(duty) });
   const unitOf = (value: Value): Unit => value.unit ?? network.units.unitFor(value.dimension);
   const inputs: Input[] = [];
+  const declared = new Map(dutyInputs(duty.chemistry, duty).map((i) => [i.name, i.sd]));
+  // What is a share of the value grows with it.
+  const spread = (sd: number | undefined, written: Value, value: number): Pick<Input, "sd"> =>
+    sd === undefined || !(sd > 0)
+      ? {}
+      : { sd: written.relative && value !== 0 ? (at) => Math.abs(at / value) * sd : () => sd };
   const add = (name: string, of: Input["of"], source: Value, value: number, more: Partial<Input> = {}): void => {
     if (inputs.some((i) => i.name === name)) return;
     const { dimension } = source;
-    inputs.push({ name, of, dimension, unit: unitOf(source), value, between: undefined, log: false, ...more });
+    const own = of === "duty" ? spread(declared.get(name), source, value) : {};
+    inputs.push({ name, of, dimension, unit: unitOf(source), value, between: undefined, log: false, ...own, ...more });
   };
   const { chemistry } = duty;
   if (chemistry) {
@@ -41,7 +51,7 @@ export function inputsOf(operation: Operation): Input[] {
     chemistry.constants.forEach(({ name, value }, k) => {
       const written = duty.with.get(name)?.value ?? value;
       const unit = written.unit ?? value.unit ?? usual(value.dimension);
-      add(name, "duty", value, numbers[k], { unit });
+      add(name, "duty", value, numbers[k], { unit, ...spread(declared.get(name), written, numbers[k]) });
     });
   }
   for (const [place, { constants }] of duty.local ?? []) {
@@ -73,6 +83,9 @@ export function inputsOf(operation: Operation): Input[] {
       unit: written.unit ?? unitOf(value),
       between: between && [between[0].of(env), between[1].of(env)],
       log: spacing === "log",
+      ...(name in values && !duty.flows.has(name.replace(/\.flow$/, "")) && !duty.settings.has(name)
+        ? {}
+        : spread(written.sd?.(env), written, env[slot])),
     });
   }
   return inputs;
@@ -80,9 +93,18 @@ export function inputsOf(operation: Operation): Input[] {
 
 const usual = (dimension: Dimension): Unit => ({ name: siUnit(dimension), factor: 1, offset: 0, dimension });
 
-/** A row with some inputs at other values. SI. */
+/** A row with some inputs at other values, SI. What is declared with a `±` and was drawn lies as many standard deviations off as before. */
 export function rowWith(row: Row, inputs: readonly Input[], values: readonly number[]): Row {
+  const drawn = ({ name, of, value, sd }: Input, at: number): number => {
+    if (!sd) return at;
+    const own = row[of][name];
+    const off = own === undefined ? (row.off[of][name] ?? 0) : (own - value) / sd(value);
+    const there = at + off * sd(at);
+    return of === "duty" ? sameSide(at, there) : there;
+  };
   const of = (half: Input["of"]): Record<string, number> =>
-    Object.fromEntries(inputs.flatMap((input, k) => (input.of === half ? [[input.name, values[k]] as const] : [])));
+    Object.fromEntries(
+      inputs.flatMap((input, k) => (input.of === half ? [[input.name, drawn(input, values[k])] as const] : [])),
+    );
   return { ...row, vessel: { ...row.vessel, ...of("vessel") }, duty: { ...row.duty, ...of("duty") } };
 }

@@ -43,7 +43,7 @@ const mostSearched = 15;
 
 /**
  * The reported figures of a duty over one or two of its inputs. The same draws serve every point, so that a curve and its
- * band are as smooth as the vessel; what is swept is taken to be known at each point.
+ * band are as smooth as the vessel; what is swept keeps the `±` that it declares at each point.
  * @param rows draws of what is unsure; none: no intervals
  */
 export function sweep(operation: Operation, axes: readonly Axis[], rows: readonly Row[], watch: Watch = {}): Sweep {

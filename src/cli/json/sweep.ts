@@ -85,19 +85,21 @@ export function aimJson(found: AimResult): Record<string, unknown> {
 }
 
 const reachedJson = (
-  { at, figure, share, kept }: Reached,
+  { at, figure, share, shareError, kept }: Reached,
   unit: Unit,
 ): {
   value: number | null;
   unit: string;
   figure: QuantityJson;
   shareMeeting: number | null;
+  shareError: number | null;
   kept?: QuantityJson;
 } => ({
   value: finite(inUnit(at, unit)),
   unit: unitName(unit),
   figure: reportedJson(figure),
   shareMeeting: share ?? null,
+  shareError: shareError ?? null,
   ...(kept === undefined ? {} : { kept: quantity(kept, figure.unit) }),
 });
 

@@ -11,7 +11,7 @@ export const aimText = (text: string): string => text.replace(">=", "≥").repla
 
 /** The answer to an aim in one to three sentences: where it is met, how surely, what cannot be. */
 export function aimWords(found: AimResult): string[] {
-  const { aim, range, sign, confidence, crossings, met, best, impossible } = found;
+  const { aim, range, sign, confidence, crossings, met, best, impossible, draws } = found;
   const { name, unit } = range.input;
   const say = (x: number): string => formatQuantity(x, unit, digits);
   const target = aimText(aim.text);
@@ -38,6 +38,11 @@ export function aimWords(found: AimResult): string[] {
     said.push(
       `At the middle values: of what is possible, ${shares} ${side} there. A confidence of 90 % adds a margin.`,
     );
+  }
+  const error = (crossings.length > 0 ? crossings : best ? [best] : []).map((c) => c.shareError ?? 0);
+  if (Math.max(0, ...error) > 0) {
+    const percent = Number((100 * Math.max(...error)).toPrecision(2));
+    said.push(`The share is known to ± ${percent} % from ${draws} draws; more make it surer.`);
   }
   for (const { from, to, why } of impossible) {
     const place = from === to ? `at ${say(from)}` : `from ${say(from)} to ${say(to)}`;
