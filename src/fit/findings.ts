@@ -150,12 +150,13 @@ function correlated(e: Ended): FitFinding[] {
 function residuals(e: Ended): FitFinding[] {
   const { lag1, deviations, significant, effective, strands } = e.estimates.autocorrelation;
   const points = e.setup.observations;
+  const told = strands.map(({ block, phi }) => ({ key: e.setup.blocks[block].key, correlation: middle(phi) }));
   const time = strands.reduce((most, s) => Math.max(most, s.time), 0);
   const evidence = { lag1, deviations, points, effective, time };
   const negative = Object.entries(e.estimates.nuisance).filter(([, n]) => n.scale && !(n.scale.value > 0));
   return [
     ...negative.map(([key, n]) => say(e, "scale-not-positive", { key }, [key], { scale: n.scale?.value ?? 0 })),
-    ...(significant ? [say(e, "residuals-correlated", { lag1, points, effective }, [], evidence)] : []),
+    ...(significant ? [say(e, "residuals-correlated", { strands: told, points, effective }, [], evidence)] : []),
   ];
 }
 
@@ -180,6 +181,9 @@ function unequal(e: Ended): FitFinding[] {
     return [say(e, "spreads-differ", { wide: wide.key, narrow: narrow.key, times }, [wide.key, narrow.key], evidence)];
   });
 }
+
+/** The middle of the correlations of neighbours. */
+const middle = (phi: Float64Array): number => [...phi.slice(1)].sort((a, b) => a - b)[(phi.length - 1) >> 1] ?? 0;
 
 const rms = (y: Float64Array): number => Math.sqrt(y.reduce((sum, v) => sum + v * v, 0) / y.length);
 

@@ -1,4 +1,7 @@
 import { describe, expect, test } from "vitest";
+import { autocorrelationOf } from "../../src/fit/autocorrelation.js";
+import { orthonormalBasis } from "../../src/fit/basis.js";
+import type { Block } from "../../src/fit/observations.js";
 import { random } from "../../src/numerics/random.js";
 import { networkOf } from "./load.js";
 import { every, fitted, parameterOf, synthetic } from "./synthetic.js";
@@ -125,4 +128,36 @@ test("values by generalised least squares scatter less than plain ones, over for
     return Math.sqrt(off.reduce((s, x) => s + x, 0) / off.length);
   };
   expect(spread("2 min")).toBeLessThan(0.9 * spread("no"));
+});
+
+// Eleven times of a flask, two readings, two values fitted: noise alone must seldom look as if it hung together.
+test("few readings of plain noise seldom seem to hang together, those of slow errors do", () => {
+  const minutes = [0, 1, 2, 4, 6, 8, 10, 15, 20, 30, 40];
+  const curve = (k1: number, k2: number): number[] => [
+    ...minutes.map((t) => Math.exp(-k1 * t)),
+    ...minutes.map((t) => (k1 / (k2 - k1)) * (Math.exp(-k1 * t) - Math.exp(-k2 * t))),
+  ];
+  const middle = curve(0.23, 0.06);
+  const slopes = [curve(0.2301, 0.06), curve(0.23, 0.0601)].map((y) => Float64Array.from(y, (v, i) => v - middle[i]));
+  const basis = orthonormalBasis(slopes);
+  const blocks = [0, 11].map((from) => ({ time: Float64Array.from(minutes), from, declared: {} }) as unknown as Block);
+  const draw = random(7);
+  const alarms = (residual: () => Float64Array, sets: number): number => {
+    let count = 0;
+    for (let s = 0; s < sets; s++) {
+      const r = residual();
+      for (const q of basis) {
+        const share = q.reduce((sum, x, i) => sum + x * r[i], 0);
+        r.forEach((_, i) => {
+          r[i] -= share * q[i];
+        });
+      }
+      if (autocorrelationOf(blocks, r, basis).significant) count++;
+    }
+    return count;
+  };
+  expect(alarms(() => Float64Array.from({ length: 22 }, () => draw.normal()), 300)).toBeLessThanOrEqual(5);
+  const slow = (): Float64Array =>
+    Float64Array.from({ length: 22 }, (_, i) => Math.sin((2 * Math.PI * (i % 11)) / 11) + 0.1 * draw.normal());
+  expect(alarms(slow, 20)).toBeGreaterThan(15);
 });

@@ -170,10 +170,10 @@ export const runEntries = {
   }),
   "residuals-correlated": entry({
     severity: "warning",
-    says: (d: { lag1: number; points: number; effective: number }) =>
-      `neighbouring residuals hang together (correlation ${d.lag1.toFixed(2)}): ${d.points} points say as much as ${d.effective.toFixed(0)} independent ones`,
+    says: (d: { strands: readonly { key: string; correlation: number }[]; points: number; effective: number }) =>
+      `neighbouring residuals hang together (correlation ${joined(d.strands.map((s) => `${s.correlation.toFixed(2)} in '${s.key}'`))}): ${d.points} points say as much as ${d.effective.toFixed(0)} independent ones`,
     fix: "intervals are widened for it; look for what the model lacks, or for drift and smoothing in the logger",
-    example: { lag1: 0.62, points: 780, effective: 183 },
+    example: { strands: [{ key: "Salt pulse/product", correlation: 0.62 }], points: 780, effective: 183 },
   }),
   "spreads-differ": entry({
     severity: "warning",
