@@ -1,5 +1,5 @@
 import { roughness } from "../data/noise.js";
-import { fQuantile } from "../numerics/distributions.js";
+import { chiSquareQuantile, fQuantile } from "../numerics/distributions.js";
 import { type Code, type DataOf, problem } from "../problems/report.js";
 import { formatQuantity } from "../units/format.js";
 import type { Estimates } from "./estimates.js";
@@ -26,6 +26,7 @@ export function findingsOf(ended: Ended): FitFinding[] {
   return [
     ...howItEnded(ended),
     ...explainsNothing(ended),
+    ...contradicted(ended),
     ...cannotTell(ended),
     ...bounds(ended),
     ...crooked(ended),
@@ -179,6 +180,33 @@ function unequal(e: Ended): FitFinding[] {
     if (!(times > 10) || wide.spread <= 1e3 * wide.floor) return [];
     const evidence = { wide: wide.spread, narrow: narrow.spread };
     return [say(e, "spreads-differ", { wide: wide.key, narrow: narrow.key, times }, [wide.key, narrow.key], evidence)];
+  });
+}
+
+/** Standard deviations of its own, root mean square, that a trial may be off. */
+const mostOff = 2;
+
+/**
+ * Trials that are off by more than the errors that all their readings declare: twice these on the average, and by a chi-square
+ * that these would give once in a thousand times (common practice).
+ */
+function contradicted(e: Ended): FitFinding[] {
+  const { blocks, trials } = e.setup;
+  return trials.flatMap((trial, t) => {
+    const own = e.readings.flatMap((reading, b) => (blocks[b].trial === t ? [{ reading, block: blocks[b] }] : []));
+    if (own.length === 0 || own.some(({ block }) => !block.declared.noise || block.censored)) return [];
+    const offs = own.map(({ reading: { key, residual, weight } }) => ({
+      key,
+      count: residual.length,
+      square: residual.reduce((sum, r, i) => sum + (r * weight[i]) ** 2, 0),
+    }));
+    const [square, count] = [offs.reduce((s, o) => s + o.square, 0), offs.reduce((s, o) => s + o.count, 0)];
+    const off = Math.sqrt(square / count);
+    if (!(off > mostOff) || !(square > chiSquareQuantile(0.999, count))) return [];
+    const worst = offs.reduce((a, b) => (b.square / b.count > a.square / a.count ? b : a));
+    const most = Math.sqrt(worst.square / worst.count);
+    const data = { trial: trial.title, key: worst.key, off: most, alone: trials.length === 1 };
+    return [say(e, "trial-contradicted", data, [worst.key], { chiSquare: square, points: count, off: most })];
   });
 }
 

@@ -301,3 +301,29 @@ readings: [{at: flask, of: A, file: data.csv, time: {column: t, unit: min}, valu
     expect(parameter(fitted(flask(), [looped], { starts: 0 }), "k").value * 60).toBeCloseTo(0.3, 3);
   });
 });
+
+describe("a flask and a plant", () => {
+  const noise = random(11);
+  const run = trial(
+    `trial: Flask run
+format: 1
+chemistry: first.yaml
+vessel: flask.yaml
+contents: {flask: {A: 1 mol/L}}
+readings: [{at: flask, of: A, file: data.csv, time: {column: t, unit: min}, value: {column: c, unit: mol/L}, noise: {floor: 0.01 mol/L}}]
+`,
+    { "data.csv": table([0.5, 1, 2, 3, 5, 8, 12, 20], (t) => Math.exp(-0.2 * t) + 0.01 * noise.normal()) },
+  );
+  const codes = (plant: string): string[] =>
+    fitted(
+      tank("{bypass: {value: 0 %, between: [0 %, 60 %]}}"),
+      [run, steadyTrial(`[{at: out, of: A, value: ${plant} mol/L ± 0.005 mol/L}]`)],
+      { free: ["k"] },
+    ).findings.map((f) => f.code);
+
+  // By the flask's 0.2 1/min, 100 L at 10 L/min leave 1 / (1 + 2) of A.
+  test("that agree within their errors are told nothing of; that do not are told to contradict one another", () => {
+    expect(codes("0.335")).not.toContain("trial-contradicted");
+    expect(codes("0.45")).toContain("trial-contradicted");
+  });
+});

@@ -175,6 +175,16 @@ export const runEntries = {
     fix: "intervals are widened for it; look for what the model lacks, or for drift and smoothing in the logger",
     example: { strands: [{ key: "Salt pulse/product", correlation: 0.62 }], points: 780, effective: 183 },
   }),
+  "trial-contradicted": entry({
+    severity: "warning",
+    says: (d: { trial: string; key: string; off: number; alone: boolean }) =>
+      `${d.alone ? "these values do" : "what fits all trials together does"} not explain '${d.trial}': '${d.key}' is off by ${formatOff(d.off)} times the error that it declares`,
+    fix: (d) =>
+      d.alone
+        ? "look for what the model lacks (another body, another rate law), or for errors that are declared too small"
+        : `fit the trials one by one: where their values differ, vessel, kinetics or conditions are not the same in '${d.trial}'; or its errors are declared too small. Predict nothing across the two until that is settled`,
+    example: { trial: "Plant analyses", key: "Plant analyses/A at product", off: 10, alone: false },
+  }),
   "spreads-differ": entry({
     severity: "warning",
     says: (d: { wide: string; narrow: string; times: number }) =>
@@ -224,6 +234,9 @@ export const runEntries = {
     example: {},
   }),
 };
+
+/** How many times, as people say it. */
+const formatOff = (times: number): string => (times < 10 ? times.toFixed(1) : times.toFixed(0));
 
 function joined(names: readonly string[]): string {
   return names.length < 2 ? (names[0] ?? "") : `${names.slice(0, -1).join(", ")} and ${names[names.length - 1]}`;
