@@ -43,7 +43,7 @@ export async function simulateFunnel(
   if (output !== undefined) {
     const made = /\.csv$/i.test(output)
       ? funnelCsv(found, time, unit)
-      : await drawnAs(output, (drawn) => plotFunnel(plant, duty, found, { time, species: unit }, drawn));
+      : await drawnAs(output, (drawn) => plotFunnel(duty, found, { time, species: unit }, drawn));
     io.write(output, made);
   }
   return {

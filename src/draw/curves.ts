@@ -21,8 +21,13 @@ export interface Curves {
   readonly free?: boolean;
   /** A limit or a target. */
   readonly level?: { readonly at: number; readonly label: string };
-  /** Measured points behind the lines. */
-  readonly points?: { readonly x: ArrayLike<number>; readonly y: ArrayLike<number>; readonly label?: string };
+  /** Measured points behind the lines; or marks of another sort, `named` beside the first of them. */
+  readonly points?: {
+    readonly x: ArrayLike<number>;
+    readonly y: ArrayLike<number>;
+    readonly label?: string;
+    readonly named?: boolean;
+  };
 }
 
 export interface CurveLine {
@@ -118,6 +123,7 @@ function panel(
     curves.level ? levelLine(curves.level, ay, plot) : "",
     measured,
     ...lines,
+    curves.points ? pointName(curves.points, ax, ay, plot) : "",
     ...curves.lines.map((l) => spikes(l, curves.lines.length > 1, ax, plot)),
     bottomAxis(ax, plot, curves.x),
     endLabels(
@@ -127,7 +133,7 @@ function panel(
   ];
   const { points: p } = curves;
   const series = [
-    ...(p ? [{ label: "measured", x: p.x, y: p.y }] : []),
+    ...(p ? [{ label: p.named ? (p.label ?? "") : "measured", x: p.x, y: p.y }] : []),
     ...curves.lines.flatMap((l) => [
       { label: l.label, x: l.x, y: l.y },
       ...(l.band
@@ -174,6 +180,20 @@ function endOf(l: CurveLine, className: string, ax: Axis, ay: Axis, plot: Box): 
   };
 }
 
+/** The name of a mark, on the side of it where there is room. */
+function pointName({ x, y, label, named }: NonNullable<Curves["points"]>, ax: Axis, ay: Axis, plot: Box): Svg {
+  if (!named || label === undefined || x.length === 0 || !Number.isFinite(y[0])) return "";
+  const at = ax.at(x[0]);
+  const right = at > plot.x + plot.width * 0.7;
+  const beside = caption(
+    [{ words: label, style: "name" }],
+    right ? at - 9 : at + 9,
+    ay.at(y[0]) - 8,
+    right ? "end" : "start",
+  );
+  return drawCaption(beside);
+}
+
 function spikes(l: CurveLine, named: boolean, ax: Axis, plot: Box): Svg {
   const base = plot.y + plot.height;
   return (l.spikes ?? [])
@@ -196,5 +216,5 @@ function inWords(curves: Curves): string {
     const at = (l.spikes ?? []).map((s) => `${formatNumber(s.area * 100, 3)} % at ${formatNumber(s.x, 4)}`);
     return at.length > 0 ? `${l.label} (with ${at.join(", ")} at once)` : l.label;
   });
-  return `${curves.y} against ${curves.x}. Lines: ${lines.join("; ")}.${curves.points ? ` Measured points: ${curves.points.label ?? curves.points.x.length}.` : ""}`;
+  return `${curves.y} against ${curves.x}. Lines: ${lines.join("; ")}.${curves.points ? ` ${curves.points.named ? "Marked" : "Measured points"}: ${curves.points.label ?? curves.points.x.length}.` : ""}`;
 }

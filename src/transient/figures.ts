@@ -9,6 +9,13 @@ import type { Transient } from "./transient.js";
 /** A figure of a transient; of one over a limit, also when, and what left meanwhile. */
 export interface TransientFigure extends Figure {
   readonly beyond?: Beyond;
+  /** Of a share of what is fed, in a run that is fed otherwise meanwhile: its ends among the run's times (s), each of what is fed then. */
+  readonly range?: { readonly lowest: Extreme; readonly highest: Extreme };
+}
+
+interface Extreme {
+  readonly value: number;
+  readonly at: number;
 }
 
 export interface Beyond {
@@ -37,8 +44,22 @@ export function transientFigures(
     if (line.what === "time-beyond") return beyondFigure(plant, line, run, end);
     if (line.what === "temperature") return temperatureFigure(duty, line, run, end, settings);
     if (run.stopped) return { name: line.text, value: Number.NaN, why: "undefined", unit: one };
-    return speciesFigure(duty, run.species, line, streamsAt(plant, run, line, end), settings);
+    const at = (t: number): Figure => speciesFigure(duty, run.species, line, streamsAt(plant, run, line, t), settings);
+    const isShare = line.what === "conversion" || line.what === "yield" || line.what === "selectivity";
+    return { ...at(end), ...(isShare && isUpset(duty) && plant.feeds.length > 0 ? rangeOf(run.times, at) : {}) };
   });
+}
+
+const isUpset = (duty: Duty): boolean => [...duty.feeds.values()].some((f) => (f.courses?.size ?? 0) > 0);
+
+function rangeOf(times: ArrayLike<number>, figure: (t: number) => Figure): Pick<TransientFigure, "range"> {
+  const seen = Array.from(times, (at): Extreme => ({ at, value: figure(at).value })).filter((e) =>
+    Number.isFinite(e.value),
+  );
+  if (seen.length === 0) return {};
+  const lowest = seen.reduce((least, e) => (e.value < least.value ? e : least));
+  const highest = seen.reduce((most, e) => (e.value > most.value ? e : most));
+  return { range: { lowest, highest } };
 }
 
 function temperatureFigure(duty: Duty, line: Reported, run: Transient, end: number, settings: DutySettings): Figure {

@@ -80,6 +80,28 @@ describe("a duty in time", () => {
     expect(String(svg.written.get("curves.svg"))).toContain("limit 0.75");
   });
 
+  test("an upset keeps no column of what is done for good, and the steady state says that it is that before", async () => {
+    const { out } = await backmix(simulate("tank.yaml", "upset.yaml"), { files });
+    expect(out).not.toContain("99 % done");
+    const steady = await backmix(["simulate", "tank.yaml", "--duty", "upset.yaml"], { files });
+    expect(steady.out).toContain(
+      "the steady state before the change that the duty tells of; --transient follows the change",
+    );
+    const { document } = await json(simulate("tank.yaml", "share.yaml", "--until", "60 min"), {
+      files: { ...files, "share.yaml": files["upset.yaml"].replace(/^report:.*/m, "report: [conversion of A]") },
+    });
+    // Seen against what is fed at the time: while twice as much is fed, the share that is left is least of all.
+    expect(at(document, "report.0.highest.at.value") as number).toBeLessThan(5.1);
+    expect(at(document, "report.0.highest.value") as number).toBeGreaterThan(0.6);
+  });
+
+  test("the figure of the limit curve says from what it departs, and which way", async () => {
+    const { written } = await backmix(simulate("tank.yaml", "upset.yaml", "--funnel", "-o", "f.svg"), { files });
+    const drawn = String(written.get("f.svg"));
+    expect(drawn).toContain("how much higher than the usual 1 mol/L, mol/L");
+    expect(drawn).toContain("this duty&#39;s upset".replace("&#39;", drawn.includes("&#39;") ? "&#39;" : "'"));
+  });
+
   test("tells the limit curve of upsets", async () => {
     const { document } = await json(simulate("tank.yaml", "upset.yaml", "--funnel", "--times", "1, 10 min"), { files });
     const points = at(document, "funnel.points") as { lasting: { value: number }; level: { value: number } }[];

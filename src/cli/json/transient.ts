@@ -52,6 +52,12 @@ export function transientJson(
       return {
         name: f.name,
         ...reportedJson(f.beyond ? { ...f, unit: clock.unit } : f),
+        ...(f.range
+          ? {
+              lowest: { value: finite(f.range.lowest.value), at: quantity(f.range.lowest.at, clock.unit) },
+              highest: { value: finite(f.range.highest.value), at: quantity(f.range.highest.at, clock.unit) },
+            }
+          : {}),
         ...(f.beyond
           ? {
               spans: f.beyond.spans.map(({ from, to }) => ({

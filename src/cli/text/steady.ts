@@ -37,6 +37,9 @@ export function steadyText(plant: Plant, duty: Duty, prediction: Prediction): st
     : [];
   return blocks(
     `${plant.network.title}: ${duty.title}${steady.converged ? "" : " (not converged: best found)"}`,
+    changesInTime(duty)
+      ? "  the steady state before the change that the duty tells of; --transient follows the change"
+      : "",
     // Where nothing is carried there is nothing to tell of places.
     species.length === 0 && !warm
       ? ""
@@ -66,6 +69,9 @@ export function steadyText(plant: Plant, duty: Duty, prediction: Prediction): st
     ]),
   );
 }
+
+/** Does a feed of the duty change in time? */
+const changesInTime = (duty: Duty): boolean => [...duty.feeds.values()].some((f) => (f.courses?.size ?? 0) > 0);
 
 /** Where the heat goes, in words. */
 function heatLines({ released, walls, exchanged, carried, closure }: HeatBalance): (readonly [string, string])[] {

@@ -50,22 +50,23 @@ function passages(plant: Plant, duty: Duty, run: Transient, { si, unit }: Clock,
   const heated = run.outlets.some((o) => o.temperatures) || run.places.some((p) => p.temperatures);
   const components = heated ? [...run.species, "temperature"] : run.species;
   const inUnits = heated ? [...units, temperatureUnit(duty)] : units;
-  const rows = places.flatMap((name) =>
-    components.map((s, i) => {
-      const { first, last, lowest, highest, t1, t99 } = passageOf(run.look(name), components.length, i, until);
-      const say = (c: number): string => formatNumber(inUnit(c, inUnits[i]));
-      const unitText = inUnits[i].name ? `, ${inUnits[i].name}` : "";
-      return [
-        `${s} at ${name}${unitText}`,
-        say(first),
-        say(last),
-        `${say(lowest.value)} at ${time(lowest.at)}`,
-        `${say(highest.value)} at ${time(highest.at)}`,
-        time(t1),
-        time(t99),
-      ];
-    }),
+  // What comes back to where it was has no way to be done with: where all does, as after an upset, no column is kept empty.
+  const passed = places.flatMap((name) =>
+    components.map((s, i) => ({ name, s, i, ...passageOf(run.look(name), components.length, i, until) })),
   );
+  const moves = passed.some((p) => p.t1 !== undefined);
+  const rows = passed.map(({ name, s, i, first, last, lowest, highest, t1, t99 }) => {
+    const say = (c: number): string => formatNumber(inUnit(c, inUnits[i]));
+    const unitText = inUnits[i].name ? `, ${inUnits[i].name}` : "";
+    return [
+      `${s} at ${name}${unitText}`,
+      say(first),
+      say(last),
+      `${say(lowest.value)} at ${time(lowest.at)}`,
+      `${say(highest.value)} at ${time(highest.at)}`,
+      ...(moves ? [time(t1), time(t99)] : []),
+    ];
+  });
   return table(
     [
       { title: "leaving" },
@@ -73,8 +74,7 @@ function passages(plant: Plant, duty: Duty, run: Transient, { si, unit }: Clock,
       right("last"),
       right(`lowest, ${unit.name}`),
       right(`highest, ${unit.name}`),
-      right(`1 % done, ${unit.name}`),
-      right("99 % done"),
+      ...(moves ? [right(`1 % done, ${unit.name}`), right("99 % done")] : []),
     ],
     rows,
   );
@@ -93,7 +93,7 @@ function figuresText(
   if (figures.length === 0) return "";
   const { units } = plant.network;
   const rows = figures.map((f, k) => {
-    if (!f.beyond) return [f.name, reportedText(f), ""];
+    if (!f.beyond) return [f.name, reportedText(f), rangeText(f, clock)];
     const i = run.species.indexOf(duty.report[k].of);
     const amount = units.unitFor(times(duty.concentrations[i], dimensions.volume));
     const { spans, volume, stillAtEnd } = f.beyond;
@@ -110,6 +110,14 @@ function figuresText(
     return [f.name, `${stillAtEnd ? "at least " : ""}${formatQuantity(f.value, clock.unit)}`, `${when}${left}`];
   });
   return table([{ title: "figure, at the end" }, { title: "value", align: "right" }, { title: "" }], rows);
+}
+
+/** How far a figure went meanwhile: at its end an upset is over, and says nothing. */
+function rangeText({ range, ...figure }: TransientFigure, { unit }: Clock): string {
+  if (!range) return "";
+  const at = (end: "lowest" | "highest"): string =>
+    `${end} ${reportedText({ ...figure, value: range[end].value })} at ${formatQuantity(range[end].at, unit)}`;
+  return `${at("lowest")}, ${at("highest")}`;
 }
 
 function balanceText({ balance }: Transient): string {

@@ -5,6 +5,7 @@ import { aimWords } from "./aim-words.js";
 import { decisionWords, tellingWords } from "./decision-words.js";
 import { spreadWords } from "./driver-words.js";
 import { differenceEstimate, estimate, readingUnit } from "./estimate.js";
+import { beyondAim, beyondWords } from "./tested.js";
 import { traitsOf } from "./traits.js";
 
 /** The answer in about five lines: what is wrong, how sure, what it makes, what a change brings, what is still open. */
@@ -72,7 +73,7 @@ function makes(result: StudyResult): string[] {
     const p = first.find((x) => x.duty === duty);
     if (!p) return [];
     const unit = readingUnit(duty, p.name, p.unit);
-    const now = `${duty.title}: ${p.name} ${figureLine(p.name, estimate(p.value, p.interval95, unit))}`;
+    const now = `${duty.title}: ${p.name} ${figureLine(p.name, estimate(p.value, p.interval95, unit))}${beyondWords(result.study, duty)}`;
     if (!p.bounds || p.bounds.apply === "no") return [`${now}.`];
     if (p.bounds.position === undefined) return [`${now}; with these rates the residence times alone fix it.`];
     const low = estimateLine(estimate(Math.min(p.bounds.segregated, p.bounds.maximumMixedness), undefined, unit));
@@ -95,7 +96,9 @@ function bestChange(result: StudyResult): string[] {
   const then = figureLine(f.name, estimate(f.value, f.interval95, unit));
   const by = estimateLine(differenceEstimate(f.value - f.before, f.difference95, unit));
   const sure = f.probabilityBetter === undefined ? "" : `; chance of being better ${chance(f.probabilityBetter)}`;
-  return [`${none}${c.change.title}: ${f.name} from ${now} to ${then}, by ${by}${sure}.`];
+  return [
+    `${none}${c.change.title}: ${f.name} from ${now} to ${then}, by ${by}${sure}${beyondWords(result.study, f.duty)}.`,
+  ];
 }
 
 /** That networks which fit about as well would have one do different things: of the first figure. */
@@ -111,7 +114,8 @@ function takes(result: StudyResult): string[] {
   return own.slice(0, mostAims).flatMap(({ found, asked }) => {
     if (!found) return [];
     const change = asked.change ? ` With '${asked.change.title}'.` : "";
-    return [`${asked.duty.title}: ${aimWords(found)[0]}${change}`];
+    const beyond = beyondAim(result.study, asked, found);
+    return [[`${asked.duty.title}: ${aimWords(found)[0]}${change}`, beyond].filter((s) => s !== "").join(" ")];
   });
 }
 

@@ -4,6 +4,7 @@ import type { Figure, ReportAim } from "../input.js";
 import { aimText, aimWords } from "./aim-words.js";
 import { sweepStatesWords } from "./states-words.js";
 import { plotSweep } from "./sweep-figure.js";
+import { beyondAim, beyondRange, beyondWords } from "./tested.js";
 
 /** "(with Second tank; by 'R-12')": what an answer is about beside the duty, where it is not the vessel as it is. */
 function about(result: StudyResult, { asked, rival }: Answered<Asked, unknown>): string {
@@ -25,11 +26,19 @@ export function sweepFigures(result: StudyResult): Figure[] {
     const gaps =
       left.length > 0 ? ` ${left.length} of ${found.points.length} points are left out: ${left[0].cannot}.` : "";
     const band = found.axes.length === 1 && found.draws > 0 ? "; the band holds 95 % of what is possible" : "";
+    const ownFlow = asked.over.some((r) => r.name.endsWith(".flow"));
+    const beyond = found.axes
+      .map((a) => beyondRange(result.study, a.input.name, [...a.values]))
+      .filter((says) => says !== "")
+      .map((says) => ` Partly ${says.charAt(0).toLowerCase()}${says.slice(1)}`)
+      .join("");
     return [
       {
         name: `sweep-${k + 1}`,
         ...plotSweep(found, { untitled: true }),
-        caption: `${asked.duty.title} over ${names}${about(result, answer)}${band}.${gaps}${sweepStatesWords(found)
+        caption: `${asked.duty.title} over ${names}${about(result, answer)}${ownFlow ? "" : beyondWords(result.study, asked.duty)}${band}.${beyond}${gaps}${sweepStatesWords(
+          found,
+        )
           .map((s) => ` ${s}`)
           .join("")}`,
       },
@@ -43,7 +52,9 @@ export function reportAims(result: StudyResult): ReportAim[] {
     const { found, asked, skipped } = answer;
     return {
       question: `${aimText(asked.aim.text)} by ${asked.by.name}, ${asked.duty.title}${about(result, answer)}`,
-      says: found ? aimWords(found) : [`Left out: ${skipped}.`],
+      says: found
+        ? [...aimWords(found), beyondAim(result.study, asked, found)].filter((s) => s !== "")
+        : [`Left out: ${skipped}.`],
     };
   });
 }

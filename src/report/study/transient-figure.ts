@@ -56,7 +56,7 @@ export function plotTransient(
       free: true,
     });
   }
-  return plotStacked(`${duty.title} in time: ${plant.network.title}`, plots, {
+  return plotStacked(`${plant.network.title}: ${duty.title}`, plots, {
     height: plots.length > 1 ? 150 : 240,
     ...options,
   });
@@ -64,9 +64,8 @@ export function plotTransient(
 
 /** The limit curve of upsets: how far from what is usual may be fed for how long; above it the limit is passed. */
 export function plotFunnel(
-  plant: Plant,
   duty: Duty,
-  { feed, species, before, line, points }: Funnel,
+  { feed, species, before, line, points, way }: Funnel,
   units: { readonly time: Unit; readonly species: Unit },
   options: CurvesOptions = {},
 ): Plotted {
@@ -77,31 +76,25 @@ export function plotFunnel(
   const own = duty.feeds.get(feed)?.courses?.get(species);
   const marked = own?.is === "upset" && own.lasting !== undefined ? own : undefined;
   const curves: Curves = {
-    title: `Upsets of ${species} in ${feed} that bring '${line.text.replace(/^time /, "")}'`,
+    title: `How far ${way > 0 ? "above" : "below"} ${formatQuantity(before, units.species)} ${species} in ${feed} may be, and for how long, before it brings '${line.text.replace(/^time /, "")}'`,
     x: `length of the upset, ${units.time.name}`,
-    y: `height of the upset, ${units.species.name}`,
-    lines: [
-      { label: "at the limit", x, y },
-      ...(marked
-        ? [
-            {
-              label: "this duty",
-              x: [inUnit(marked.lasting ?? 0, units.time)],
-              y: [height(marked.to.of([]))],
-            },
-          ]
-        : []),
-    ],
+    y: `how much ${way > 0 ? "higher" : "lower"} than the usual ${formatQuantity(before, units.species)}, ${units.species.name}`,
+    lines: [{ label: "at the limit", x, y }],
     xLog: true,
     ...(marked
       ? {
           points: {
             x: [inUnit(marked.lasting ?? 0, units.time)],
             y: [height(marked.to.of([]))],
-            label: "the upset of the duty",
+            label: "this duty's upset",
+            named: true,
           },
         }
       : {}),
   };
-  return plotStacked(`Upsets that ${plant.network.title} bears: ${duty.title}`, [curves], { log: true, ...options });
+  return plotStacked(
+    `How far ${species} in ${feed} may be ${way > 0 ? "above" : "below"} ${formatQuantity(before, units.species)}, and how long`,
+    [curves],
+    { log: true, ...options },
+  );
 }
