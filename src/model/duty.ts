@@ -111,7 +111,7 @@ export interface Reported {
     | "temperature"
     | "tracer-time"
     | "time-beyond";
-  /** The species; empty for temperature and tracer-time. */
+  /** The species; empty for temperature and tracer-time, and for a time beyond a limit of the temperature. */
   readonly of: string;
   /** `yield of P from A`, `selectivity of P over S`: the second species. */
   readonly versus: string | undefined;

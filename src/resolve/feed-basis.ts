@@ -76,7 +76,8 @@ export function settleLimit(
   { concentrations }: Pick<SettledFeeds, "concentrations">,
   report: Report,
 ): Reported | undefined {
-  if (!line.limit) return line;
+  // One of the temperature is no concentration.
+  if (!line.limit || line.of === "") return line;
   const i = species.indexOf(line.of);
   const wanted = concentrations[i];
   const { value } = line.limit;

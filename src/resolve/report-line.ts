@@ -2,6 +2,7 @@ import type { Reported } from "../model/duty.js";
 import type { Report } from "../problems/report.js";
 import type { ScalarNode } from "../read/tree.js";
 import { nearest } from "../text/nearest.js";
+import { dimensions } from "../units/dimension.js";
 import { concentrationBases } from "./bases.js";
 import { aboveZero } from "./sign.js";
 import { spanWithin } from "./span.js";
@@ -41,9 +42,17 @@ export function resolveReportLine(node: ScalarNode, species: readonly string[], 
     const [, of, at, side, written] = beyond;
     const from = node.text.lastIndexOf(written);
     const place = from < 0 ? node.at : spanWithin(node, from, from + written.length);
-    const value = resolveValue({ ...node, text: written, at: place }, concentrationBases, emptyScope, report);
-    if (!known(of) || !value || !aboveZero("a limit", value, true, report)) return undefined;
-    return { ...line, what: "time-beyond", of, at, limit: { side: side === "above" ? "above" : "below", value } };
+    const warm = of === "temperature" && !species.includes(of);
+    const bases = warm ? [dimensions.temperature] : concentrationBases;
+    const value = resolveValue({ ...node, text: written, at: place }, bases, emptyScope, report);
+    if ((!warm && !known(of)) || !value || !aboveZero("a limit", value, true, report)) return undefined;
+    return {
+      ...line,
+      what: "time-beyond",
+      of: warm ? "" : of,
+      at,
+      limit: { side: side === "above" ? "above" : "below", value },
+    };
   }
   for (const { form, what, versus } of forms) {
     const match = form.exec(text);

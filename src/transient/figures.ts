@@ -21,9 +21,9 @@ interface Extreme {
 export interface Beyond {
   /** s */
   readonly spans: readonly Span[];
-  /** m3 that left meanwhile, and how much of the species it held (SI). */
+  /** m3 that left meanwhile, and how much of the species it held (SI); no amount where the limit is one of the temperature. */
   readonly volume: number;
-  readonly amount: number;
+  readonly amount: number | undefined;
   /** Is it still so where the run ends? Then the time is that within the run. */
   readonly stillAtEnd: boolean;
 }
@@ -41,7 +41,7 @@ export function transientFigures(
   const end = run.times[run.times.length - 1];
   return duty.report.map((line): TransientFigure => {
     if (line.what === "tracer-time") return tracerFigure(plant, line);
-    if (line.what === "time-beyond") return beyondFigure(plant, line, run, end);
+    if (line.what === "time-beyond") return beyondFigure(plant, duty, line, run, end, settings);
     if (line.what === "temperature") return temperatureFigure(duty, line, run, end, settings);
     if (run.stopped) return { name: line.text, value: Number.NaN, why: "undefined", unit: one };
     const at = (t: number): Figure => speciesFigure(duty, run.species, line, streamsAt(plant, run, line, t), settings);
@@ -71,26 +71,54 @@ function temperatureFigure(duty: Duty, line: Reported, run: Transient, end: numb
   return { name: line.text, value, why: Number.isNaN(value) ? "undefined" : undefined, unit: temperatureUnit(duty) };
 }
 
-function beyondFigure(plant: Plant, line: Reported, run: Transient, end: number): TransientFigure {
+function beyondFigure(
+  plant: Plant,
+  duty: Duty,
+  line: Reported,
+  run: Transient,
+  end: number,
+  settings: DutySettings,
+): TransientFigure {
   const { limit, at = "" } = line;
   const unit = plant.network.units.time;
-  if (!limit || run.stopped) return { name: line.text, value: Number.NaN, why: "undefined", unit };
+  const unknown: TransientFigure = { name: line.text, value: Number.NaN, why: "undefined", unit };
+  if (!limit || run.stopped) return unknown;
   const look = run.look(at);
   const n = run.species.length;
-  const i = run.species.indexOf(line.of);
-  const spans = beyond(look, n, i, limit.value.of([]), limit.side, end);
+  const i = line.of === "" ? n : run.species.indexOf(line.of);
+  const level = limit.value.of([]);
+  const spans = stretchesBeyond();
+  if (!spans) return unknown;
   const value = spans.reduce((sum, { from, to }) => sum + to - from, 0);
   const stillAtEnd = spans.length > 0 && spans[spans.length - 1].to >= end;
-  const flow = plant.columns.inflow[plant.exit.get(at) ?? 0];
-  const row = new Float64Array(n);
-  let amount = 0;
-  for (const { from, to } of spans) {
-    look.integral(to, row);
-    amount += flow * row[i];
-    look.integral(from, row);
-    amount -= flow * row[i];
+  const volume = plant.columns.inflow[plant.exit.get(at) ?? 0] * value;
+  return { name: line.text, value, why: undefined, unit, beyond: { spans, volume, amount: amount(spans), stillAtEnd } };
+
+  function stretchesBeyond(): Span[] | undefined {
+    if (!limit) return undefined;
+    const held = settings.temperature ?? duty.temperature?.of([]);
+    if (i < n || held === undefined) {
+      const row = new Float64Array(n + 1).fill(Number.NaN);
+      look.at(0, row);
+      if (Number.isNaN(row[i])) return undefined;
+      return beyond(look, n + 1, i, level, limit.side, end);
+    }
+    return (limit.side === "above" ? held > level : held < level) ? [{ from: 0, to: end }] : [];
   }
-  return { name: line.text, value, why: undefined, unit, beyond: { spans, volume: flow * value, amount, stillAtEnd } };
+
+  function amount(within: readonly Span[]): number | undefined {
+    if (i === n) return undefined;
+    const flow = plant.columns.inflow[plant.exit.get(at) ?? 0];
+    const row = new Float64Array(n);
+    let sum = 0;
+    for (const { from, to } of within) {
+      look.integral(to, row);
+      sum += flow * row[i];
+      look.integral(from, row);
+      sum -= flow * row[i];
+    }
+    return sum;
+  }
 }
 
 /** What is fed and what leaves at a time; in a closed vessel, what there was at the start and is then. */

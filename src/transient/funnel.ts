@@ -50,7 +50,7 @@ export function funnelOf(plant: Plant, duty: Duty, lengths?: readonly number[]):
   );
   if (upsets.length === 0) return "no-upset";
   if (upsets.length > 1) return "several-upsets";
-  const line = duty.report.find((l) => l.what === "time-beyond");
+  const line = duty.report.find((l) => l.what === "time-beyond" && (l.of !== "" || duty.heat !== undefined));
   if (!line?.limit) return "no-limit";
   const [{ feed, of, course, species }] = upsets;
   const before = species.get(of)?.value.of([]) ?? 0;
@@ -105,9 +105,9 @@ function benchOf(plant: Plant, duty: Duty, feed: string, of: string, line: Repor
       const end = endOf(plant, upset);
       const run = transient(plant, duty.chemistry, upset, [0, end], { ...rough, at: [line.at ?? ""] });
       if (run.stopped) return undefined;
-      const component = run.species.indexOf(line.of);
+      const component = line.of === "" ? run.species.length : run.species.indexOf(line.of);
       const look = run.look(line.at ?? "");
-      const row = new Float64Array(run.species.length);
+      const row = new Float64Array(run.species.length + 1);
       look.at(end, row, -1);
       return { look, end, size: row.length, component, last: row[component] };
     },

@@ -10,10 +10,18 @@ import { type Transient, transient } from "./transient.js";
 /** Fine enough for draws: far finer than what is drawn. */
 const roughly = { relative: 1e-6, absolute: 1e-9, balance: false };
 
-/** s: when a duty is over that starts at 0: after the last change, when a tracer put in then would have left (to 0.1 %). */
+/** Mean times after the last change that are followed at least: behind a tube tracer is over the moment that it comes. */
+const leastMeans = 3;
+
+/**
+ * s: when a duty is over that starts at 0: after the last change, when a tracer put in then would have left (to 0.1 %), and at
+ * least three mean times.
+ */
 export function endOf(plant: Plant, duty: Duty): number {
-  const fed = plant.feeds.filter((f) => f.flow > 0).map((f) => settlingTime(plant, f.name));
-  return lastChange(duty) + Math.max(0, ...fed);
+  const fed = plant.feeds.filter((f) => f.flow > 0);
+  const mean = plant.volume.active / fed.reduce((sum, f) => sum + f.flow, 0);
+  const least = Number.isFinite(mean) ? leastMeans * mean : 0;
+  return lastChange(duty) + Math.max(least, ...fed.map((f) => settlingTime(plant, f.name)));
 }
 
 /** True where a duty reports something that only time shows. */

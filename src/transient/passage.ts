@@ -7,7 +7,10 @@ export interface Passage {
   readonly last: number;
   readonly lowest: { readonly value: number; readonly at: number };
   readonly highest: { readonly value: number; readonly at: number };
-  /** When 1 % and 99 % of the way from first to last are done for good; undefined where it comes back to where it was. */
+  /**
+   * When it has first gone from where it begins by 1 % of the way from first to last, and since when it is within 1 % of that way
+   * of where it ends; undefined where it comes back to where it was.
+   */
   readonly t1: number | undefined;
   readonly t99: number | undefined;
 }
@@ -43,20 +46,23 @@ export function passageOf(look: Look, species: number, component: number, until:
   if (!(Math.abs(way) > 1e-6 * size && Math.abs(way) > leastWay * (highest.value - lowest.value))) {
     return { first, last, lowest, highest, t1: undefined, t99: undefined };
   }
-  /** The last time at which less than a share of the way was done. */
-  const done = (share: number): number => {
-    const ahead = (value: number): boolean => (value - first) / way >= share;
-    let k = seen.length - 1;
-    while (k >= 0 && ahead(seen[k][1])) k--;
-    if (k < 0) return 0;
-    if (k === seen.length - 1) return until;
+  const band = 0.01 * Math.abs(way);
+  const near = (level: number) => (value: number) => Math.abs(value - level) <= band;
+  /** Where it passes from one sample to the next. */
+  const between = (k: number, inside: (value: number) => boolean): number => {
     let [low, high] = [seen[k][0], seen[k + 1][0]];
+    const before = inside(seen[k][1]);
     for (let i = 0; i < 60 && high - low > 1e-15 * high; i++) {
       const middle = (low + high) / 2;
-      if (ahead(at(middle, 1))) high = middle;
-      else low = middle;
+      if (inside(at(middle, 1)) === before) low = middle;
+      else high = middle;
     }
     return high;
   };
-  return { first, last, lowest, highest, t1: done(0.01), t99: done(0.99) };
+  const [nearFirst, nearLast] = [near(first), near(last)];
+  const left = seen.findIndex(([, value]) => !nearFirst(value));
+  const late = seen.findLastIndex(([, value]) => !nearLast(value));
+  const t1 = left <= 0 ? 0 : between(left - 1, nearFirst);
+  const t99 = late < 0 ? 0 : late === seen.length - 1 ? until : between(late, nearLast);
+  return { first, last, lowest, highest, t1, t99 };
 }

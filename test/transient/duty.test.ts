@@ -8,7 +8,7 @@ import { networkSettings } from "../../src/reaction/conditions.js";
 import { figuresOf } from "../../src/reaction/figures.js";
 import { steadyState } from "../../src/reaction/steady.js";
 import { transientFigures } from "../../src/transient/figures.js";
-import { withTimes } from "../../src/transient/in-time.js";
+import { endOf, withTimes } from "../../src/transient/in-time.js";
 import { passageOf } from "../../src/transient/passage.js";
 import { transient } from "../../src/transient/transient.js";
 
@@ -90,6 +90,13 @@ describe("a duty in time", () => {
       expect(Number.isFinite(over.value)).toBe(!still);
       expect(level.value).toBeCloseTo(500, 6);
     }
+  });
+
+  test("a start-up through a tube alone is followed beyond the front", () => {
+    const { plant, duty } = read(tank.replace("stirred", "tubular"), "feeds: {feed: {A: 1 mol/L}}");
+    expect(endOf(plant, duty) / 60).toBeCloseTo(150, 6);
+    const mixed = read(tank, "feeds: {feed: {A: 1 mol/L}}");
+    expect(endOf(mixed.plant, mixed.duty) / 60).toBeGreaterThan(50 * Math.log(1000));
   });
 
   test("grams by the molar mass, in feeds, limits and what is there at the start", () => {

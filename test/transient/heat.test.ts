@@ -6,6 +6,7 @@ import type { Problem } from "../../src/problems/problem.js";
 import { RefusedError } from "../../src/problems/refused.js";
 import { networkSettings } from "../../src/reaction/conditions.js";
 import { steadyState } from "../../src/reaction/steady.js";
+import { transientFigures } from "../../src/transient/figures.js";
 import { transient } from "../../src/transient/transient.js";
 
 const chemistry = `chemistry: Warm decay
@@ -74,6 +75,33 @@ describe("heat in time", () => {
     for (const c of run.balance?.closure ?? [1]) expect(Math.abs(c)).toBeLessThan(1e-9);
     expect(Math.abs(run.balance?.heat ?? 1)).toBeLessThan(1e-9);
     expect(run.balance?.conserved).toBeLessThan(1e-9);
+  });
+
+  test("a time beyond a limit of the temperature: an adiabatic batch by the closed form of its temperature", () => {
+    const { plant, duty } = read(
+      "compartments: {flask: {kind: stirred, volume: 1 L}}",
+      "contents: {flask: {A: 1 mol/L, temperature: 300 K}}\nheat: adiabatic\nreport: [time temperature at flask above 310 K, time temperature at flask below 299 K]",
+    );
+    const run = transient(plant, duty.chemistry, duty, minutes(0, 60));
+    const [hot, cold] = transientFigures(plant, duty, run);
+    // Half converted at 310 K: t = int dx / (k(T) (1 - x)) up to 1/2, by Simpson's rule.
+    const k = (x: number): number => (0.05 / 60) * Math.exp((50_000 / 8.314462618) * (1 / 300 - 1 / (300 + 20 * x)));
+    const n = 20_000;
+    let sum = 0;
+    for (let i = 0; i <= n; i++) sum += (i === 0 || i === n ? 1 : i % 2 ? 4 : 2) / (k(i / 2 / n) * (1 - i / 2 / n));
+    expect((3600 - hot.value) / (sum / 2 / (3 * n))).toBeCloseTo(1, 7);
+    expect(hot.beyond?.stillAtEnd).toBe(true);
+    expect(hot.beyond?.amount).toBeUndefined();
+    expect(cold.value).toBe(0);
+  });
+
+  test("where the temperature is held, it is beyond a limit all the time or never", () => {
+    const { plant, duty } = read(
+      "compartments: {flask: {kind: stirred, volume: 1 L}}",
+      "contents: {flask: {A: 1 mol/L}}\ntemperature: 300 K\nreport: [time temperature at flask above 290 K, time temperature at flask above 310 K]",
+    );
+    const run = transient(plant, duty.chemistry, duty, minutes(0, 60));
+    expect(transientFigures(plant, duty, run).map((f) => f.value)).toEqual([3600, 0]);
   });
 
   test("an exchanger is refused with its place: what leaves would warm what enters", () => {

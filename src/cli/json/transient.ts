@@ -65,7 +65,7 @@ export function transientJson(
                 to: quantity(to, clock.unit),
               })),
               volume: quantity(f.beyond.volume, network.units.unitFor(dimensions.volume)),
-              amount: quantity(f.beyond.amount, amount(i)),
+              ...(f.beyond.amount === undefined ? {} : { amount: quantity(f.beyond.amount, amount(i)) }),
               stillAtEnd: f.beyond.stillAtEnd,
             }
           : {}),

@@ -95,8 +95,11 @@ function figuresText(
   const rows = figures.map((f, k) => {
     if (!f.beyond) return [f.name, reportedText(f), rangeText(f, clock)];
     const i = run.species.indexOf(duty.report[k].of);
-    const amount = units.unitFor(times(duty.concentrations[i], dimensions.volume));
-    const { spans, volume, stillAtEnd } = f.beyond;
+    const { spans, volume, amount, stillAtEnd } = f.beyond;
+    const held =
+      amount === undefined
+        ? ""
+        : ` with ${formatQuantity(amount, units.unitFor(times(duty.concentrations[i], dimensions.volume)))} of ${duty.report[k].of}`;
     const at = (t: number): string => formatNumber(inUnit(t, clock.unit));
     const listed = spans.slice(0, mostSpans).map(({ from, to }) => `${at(from)} to ${at(to)}`);
     const more = spans.length > mostSpans ? ` and ${spans.length - mostSpans} more` : "";
@@ -106,7 +109,7 @@ function figuresText(
     const left =
       spans.length === 0 || volume === 0
         ? ""
-        : `; meanwhile ${formatQuantity(volume, units.unitFor(dimensions.volume))} left with ${formatQuantity(f.beyond.amount, amount)} of ${duty.report[k].of}`;
+        : `; meanwhile ${formatQuantity(volume, units.unitFor(dimensions.volume))} left${held}`;
     return [f.name, `${stillAtEnd ? "at least " : ""}${formatQuantity(f.value, clock.unit)}`, `${when}${left}`];
   });
   return table([{ title: "figure, at the end" }, { title: "value", align: "right" }, { title: "" }], rows);

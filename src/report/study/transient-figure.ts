@@ -30,20 +30,12 @@ export function plotTransient(
     }));
   const plots: Curves[] = run.species.map((s, i) => {
     const unit = units.species[i];
-    const limit = duty.report.find((line) => line.what === "time-beyond" && line.of === s)?.limit;
     return {
       title: s,
       x: time,
       y: words(s, unit),
       lines: lines(({ values }, k) => values[k * n + i], unit),
-      ...(limit
-        ? {
-            level: {
-              at: inUnit(limit.value.of([]), unit),
-              label: `limit ${formatQuantity(limit.value.of([]), limit.value.unit ?? unit)}`,
-            },
-          }
-        : {}),
+      ...limitOf(duty, s, unit),
     };
   });
   if (courses.some((c) => c.temperatures)) {
@@ -54,12 +46,23 @@ export function plotTransient(
       y: words("temperature", unit),
       lines: lines(({ temperatures }, k) => temperatures?.[k] ?? Number.NaN, unit),
       free: true,
+      ...limitOf(duty, "", unit),
     });
   }
   return plotStacked(`${plant.network.title}: ${duty.title}`, plots, {
     height: plots.length > 1 ? 150 : 240,
     ...options,
   });
+}
+
+/** The first limit of a species, or with "" of the temperature, as a level across. */
+function limitOf(duty: Duty, of: string, unit: Unit): Pick<Curves, "level"> {
+  const limit = duty.report.find((line) => line.what === "time-beyond" && line.of === of)?.limit;
+  if (!limit) return {};
+  const value = limit.value.of([]);
+  return {
+    level: { at: inUnit(value, unit), label: `limit ${formatQuantity(value, limit.value.unit ?? unit)}` },
+  };
 }
 
 /** The limit curve of upsets: how far from what is usual may be fed for how long; above it the limit is passed. */

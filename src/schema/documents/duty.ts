@@ -83,7 +83,7 @@ export const dutyShape = record({
     example: "60 degC",
   },
   report: {
-    says: "The figures that count, over all outlets together or, with `at NAME`, at one place: `conversion of A`, `yield of P from A`, `selectivity of P over S`, `log-removal of A`. A concentration (`A at product`), a temperature (`temperature at product`), a time by which so many % of a tracer pulse have left (`t10 at product`) and how long a transient is on one side of a limit (`time A at product above 0.2 mol/L`) are always at one place. Of a transient the others are told as they stand at its end.",
+    says: "The figures that count, over all outlets together or, with `at NAME`, at one place: `conversion of A`, `yield of P from A`, `selectivity of P over S`, `log-removal of A`. A concentration (`A at product`), a temperature (`temperature at product`), a time by which so many % of a tracer pulse have left (`t10 at product`) and how long a transient is on one side of a limit (`time A at product above 0.2 mol/L`, `time temperature at product above 80 degC`) are always at one place. Of a transient the others are told as they stand at its end; a time beyond a limit that is still so there has no end.",
     example: "[conversion of A, yield of P from A]",
     shape: list(text),
   },
