@@ -41,6 +41,12 @@ export function inputNamed(name: string, inputs: readonly Input[], option: strin
   if (input) return input;
   const names = inputs.map((i) => i.name);
   const near = nearest(name, names);
+  if (/(^|\.)temperature$/.test(name)) {
+    const where = name === "temperature" ? "a duty" : "a feed of a duty with `heat:`";
+    throw new UsageError(
+      `${option}: there is no '${name}'; ${where} has one where it says \`temperature:\`: write the present one there; there are ${names.join(", ")}`,
+    );
+  }
   throw new UsageError(
     `${option}: there is no '${name}'; ${near ? `did you mean '${near}'?` : `there are ${names.join(", ")}`}`,
   );

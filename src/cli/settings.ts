@@ -1,16 +1,19 @@
 import type { Settings } from "../compile/plant.js";
+import type { Duty } from "../model/duty.js";
 import type { Network } from "../model/network.js";
 import { collector } from "../problems/report.js";
 import type { ScalarNode } from "../read/tree.js";
 import { emptyScope, resolveValue } from "../resolve/value.js";
+import { inputsOf } from "../study/inputs.js";
 import { nearest } from "../text/nearest.js";
 import { UsageError } from "./outcome.js";
 
 /**
  * The values of `--set name=value`, SI by name; a later one of the same name counts.
+ * @param duty what stands beside the network: its names are told apart from unknown ones
  * @throws UsageError where a name is unknown or a value has the wrong dimension
  */
-export function settingsFrom(network: Network, written: readonly string[] = []): Settings {
+export function settingsFrom(network: Network, written: readonly string[] = [], duty?: Duty): Settings {
   const settable = network.names.filter((n) => n.role !== "inflow");
   const names = settable.map((n) => n.name);
   return Object.fromEntries(
@@ -19,6 +22,12 @@ export function settingsFrom(network: Network, written: readonly string[] = []):
       const name = text.slice(0, equals).trim();
       const named = settable.find((n) => n.name === name);
       if (equals < 0) throw new UsageError(`'--set ${text}' has no value; write --set name=value`);
+      const own = !named && duty ? inputsOf({ network, duty, values: {}, kinetics: new Map() }) : [];
+      if (own.some((input) => input.name === name && input.of === "duty")) {
+        throw new UsageError(
+          `--set ${text}: '${name}' belongs to the duty '${duty?.title}', and --set moves the network alone; write it there, or move it with \`sweep --over\``,
+        );
+      }
       if (!named) throw new UsageError(`there is no '${name}' to set; ${suggest(name, names)}`);
       const { report, problems } = collector();
       const value = resolveValue(scalar(text, equals + 1), named.value.dimension, emptyScope, report);

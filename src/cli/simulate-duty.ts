@@ -42,7 +42,7 @@ export async function simulateDuty(
   const { report, problems } = collector();
   checkDuty(network, duty, report);
   inputs.accept(problems);
-  const plant = plantAt(network, { ...networkSettings(duty), ...settingsFrom(network, options.set) });
+  const plant = plantAt(network, { ...networkSettings(duty), ...settingsFrom(network, options.set, duty) });
   const progress = progressOn(io);
   const prediction = predict(plant, duty, {}, ({ together, missing }) =>
     progress.say(

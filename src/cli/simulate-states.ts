@@ -39,7 +39,7 @@ export async function simulateStates(
   if (ending !== undefined && !["csv", "svg", "png"].includes(ending)) {
     throw new UsageError(`-o '${options.output}': write to .csv, .svg or .png`);
   }
-  const set = settingsFrom(network, options.set);
+  const set = settingsFrom(network, options.set, duty);
   const operation: Operation = { network, duty, values: set, kinetics: new Map() };
   const input = inputNamed(over.slice(0, equals).trim(), inputsOf(operation), "--states");
   const { from, to, unit } = rangeFrom(over.slice(equals + 1).trim(), input, option);

@@ -42,7 +42,7 @@ export async function simulateTransient(
   const { report, problems } = collector();
   checkDuty(network, duty, report, true);
   inputs.accept(problems);
-  const plant = plantAt(network, { ...networkSettings(duty), ...settingsFrom(network, options.set) });
+  const plant = plantAt(network, { ...networkSettings(duty), ...settingsFrom(network, options.set, duty) });
   for (const name of options.at ?? []) requirePlace(name, plant.exit, "--at");
   if (options.funnel) return (await import("./simulate-funnel.js")).simulateFunnel(plant, duty, options, { io });
   const clock = clockFrom(options, network.units.time, () => {
@@ -114,7 +114,7 @@ function windows(
   }
   if (!asksForTime(duty))
     throw new UsageError("--draws needs a limit, such as `report: [time A at product above 0.2 mol/L]`");
-  const operation: Operation = { network, duty, values: settingsFrom(network, set), kinetics: new Map() };
+  const operation: Operation = { network, duty, values: settingsFrom(network, set, duty), kinetics: new Map() };
   const { settings } = drawsOf(network, undefined, draws, seed);
   const late = delay === undefined ? 0 : oneTime(delay, "--delay", '"30 s"').si;
   return { found: diversionWindows(operation, rowsFor(operation, settings, seed), late), delay: late };

@@ -51,7 +51,7 @@ function ask(file: string, options: SweepOptions, { inputs, io }: Context): Aske
   const { report, problems } = collector();
   checkDuty(network, duty, report);
   inputs.accept(problems);
-  const set = settingsFrom(network, options.set);
+  const set = settingsFrom(network, options.set, duty);
   const plant = compile(network, set).plant ?? plantAt(network, set);
   inputs.accept(uncarried(plant, "reaction"));
   const trials = (options.trial ?? []).map((path) => inputs.document(path, parseTrial));

@@ -30,8 +30,8 @@ export interface BranchPoint {
 export interface Turn {
   /** Of the input, SI. */
   readonly at: number;
-  /** `ignites`, `goes out`: a stable state ends, and the next is hotter, colder; `ends`: without heat; `swings`: it stays, but begins to swing. */
-  readonly what: "ignites" | "goes out" | "ends" | "swings";
+  /** `ignites`, `goes out`: a stable state ends, and the next is hotter, colder; `ends`: without heat, or where it is not known which side is stable; `swings`: it stays, but begins to swing; `gives way`: it stays, but any disturbance leads to another. */
+  readonly what: "ignites" | "goes out" | "ends" | "swings" | "gives way";
   /** Whether it happens as the input rises or falls. */
   readonly as: "rises" | "falls";
   readonly state: SteadyState;
@@ -295,20 +295,24 @@ function turnsOf(points: readonly Judged[], branch: number, duty: Duty): Turn[] 
   return points.flatMap((point, k): Turn[] => {
     const [before, after] = [points[k - 1], points[k + 1]];
     if (point.turn && before && after) {
-      // The side on which it is stable, or the colder one where that was not judged or neither is.
-      const [from, to] = after.stable === true && before.stable !== true ? [after, before] : [before, after];
+      // The side on which it is stable. Where that was not judged a branch that is stable at both ends is so on every other piece.
+      const judged = before.stable !== undefined || after.stable !== undefined;
+      const passed = points.slice(0, k).filter((q) => q.turn).length;
+      const even = points.filter((q) => q.turn).length % 2 === 0;
+      const second = judged ? after.stable === true && before.stable !== true : passed % 2 === 1;
+      const [from, to] = second ? [after, before] : [before, after];
       if (from.stable === false) return [];
       const as = from.at < point.at ? "rises" : "falls";
       const hotter = (to.warmth ?? 0) > (from.warmth ?? 0);
-      const what = duty.heat ? (hotter ? "ignites" : "goes out") : "ends";
+      const what = duty.heat && (judged || even) ? (hotter ? "ignites" : "goes out") : "ends";
       return [{ at: point.at, state: point.state, as, what, branch, point: k }];
     }
     if (!after || after.turn || point.turn || point.stable === undefined || after.stable === undefined) return [];
     if (point.stable === after.stable) return [];
     const [from, to] = point.stable ? [point, after] : [after, point];
-    if (!((to.mode?.swing ?? 0) > 0)) return [];
+    const what = (to.mode?.swing ?? 0) > 0 ? "swings" : "gives way";
     const [a, b] = [from.mode?.growth ?? 0, to.mode?.growth ?? 0];
     const at = from.at + ((to.at - from.at) * a) / (a - b);
-    return [{ at, state: from.state, as: from.at < to.at ? "rises" : "falls", what: "swings", branch, point: k }];
+    return [{ at, state: from.state, as: from.at < to.at ? "rises" : "falls", what, branch, point: k }];
   });
 }

@@ -36,6 +36,15 @@ export function resolveAim(node: ScalarNode, duty: Duty, report: Report): Aim | 
   const target = part(node, node.text.length - value.length, value);
   const known = resolveValue(target, dimensionOf(line, duty), emptyScope, report);
   if (!known) return undefined;
+  const share = known.of([]);
+  if (line.what === "conversion" && !(share <= 1)) {
+    const meant =
+      share <= 100
+        ? `write the sign: \`${figure} ${sign} ${Number(share.toPrecision(6))} %\``
+        : "ask for 100 % at most";
+    report("aim-beyond", target.at, { figure, target: `${Number((100 * share).toPrecision(6))} %`, meant });
+    return undefined;
+  }
   const text = node.text.trim().replace(/\s+/g, " ");
   return { text, line, sign: signs[sign], target: { value: known.of([]), unit: known.unit ?? one } };
 }

@@ -95,4 +95,20 @@ describe("several steady states in a sweep", () => {
     expect(stdout).not.toContain("which one the vessel runs at");
     expect(stdout).toContain("A modelled log-removal is not credit");
   });
+
+  test("names of the duty, a temperature that is not there and a forgotten % are told in so many words", async () => {
+    const err = async (...args: string[]): Promise<string> => {
+      const ran = await backmix(args, { files });
+      expect(ran.status).toBe(2);
+      return ran.err.replace(/\s+/g, " ");
+    };
+    expect(await err("simulate", "tank.yaml", "--duty", "hot.yaml", "--set", "k=2 1/min")).toContain(
+      "'k' belongs to the duty 'Cold feed'",
+    );
+    expect(await err("sweep", "tank.yaml", "--duty", "hot.yaml", "--over", "temperature=300 K..310 K")).toContain(
+      "a duty has one where it says `temperature:`",
+    );
+    const aim = ["--aim", "conversion of A >= 60", "--by", "feed.flow", "--between", "1 L/min..2 L/min"];
+    expect(await err("sweep", "tank.yaml", "--duty", "hot.yaml", ...aim)).toContain("conversion of A cannot be 6000 %");
+  });
 });

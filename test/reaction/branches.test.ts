@@ -126,4 +126,70 @@ reactions:
     expect(found.turns.map((t) => t.at).sort((a, b) => a - b)).toEqual(expected.map((v) => expect.closeTo(v, 9)));
     expect(found.turns.every((t) => t.what === "ends")).toBe(true);
   });
+
+  test("what goes out is told from what ignites where no stability is judged", () => {
+    const network = `network: loop
+format: 1
+feeds: {feed: {flow: 1 L/min, to: pfr}}
+compartments:
+  pfr: {kind: tubular, volume: 10 L, to: {pfr: 4 L/min, out: rest}}
+outlets: [out]
+`;
+    const chemistry = `chemistry: first order
+format: 1
+species: {A: {}, P: {}}
+constants: {k: {at: 300 K, value: 0.001 1/min, activation: 80 kJ/mol}}
+reactions: [{equation: A -> P, rate: k * A, heat: -200 kJ/mol}]
+medium: {heat-capacity: 4 kJ/L/K}
+`;
+    const duty =
+      "duty: x\nformat: 1\nchemistry: c.yaml\nheat: adiabatic\nfeeds: {feed: {A: 2 mol/L, temperature: 300 K}}\nreport: [conversion of A]\n";
+    const { plant, duty: hot } = read(network, duty, chemistry);
+    const found = branchesAlong(hot, {
+      from: 280,
+      to: 330,
+      plantAt: () => plant,
+      settingsAt: (T) => ({ "feed.temperature": T }),
+    });
+    expect(found.branches.flat().every((p) => p.stable === undefined)).toBe(true);
+    // Whatever ignites is cold, whatever goes out is hot: heat makes temperature and conversion go together.
+    const turns = [...found.turns].sort((a, b) => a.at - b.at);
+    expect(turns.map((t) => [t.what, t.as])).toEqual([
+      ["goes out", "falls"],
+      ["ignites", "rises"],
+    ]);
+    expect(turns[0].state.outlets[0].temperature ?? 0).toBeGreaterThan(
+      (turns[1].state.outlets[0].temperature ?? 0) + 30,
+    );
+  });
+
+  test("a chemostat is washed out where its cells grow as fast as they are carried off at the feed", () => {
+    const network = `network: chemostat
+format: 1
+parameters: {Q: {value: 0.4 L/h, between: [0.05 L/h, 1 L/h]}}
+feeds: {feed: {flow: Q, to: tank}}
+compartments: {tank: {kind: stirred, volume: 1 L, to: out}}
+outlets: [out]
+`;
+    const chemistry = `chemistry: monod
+format: 1
+species: {S: {}, X: {}}
+constants: {mu: 0.5 1/h, ks: 0.1 g/L, kd: 0.02 1/h}
+reactions:
+  - {makes: {S: -2, X: 1}, rate: mu * S / (ks + S) * X}
+  - {makes: {X: -1}, rate: kd * X}
+`;
+    const duty = "duty: x\nformat: 1\nchemistry: c.yaml\nfeeds: {feed: {S: 10 g/L}}\nreport: [conversion of S]\n";
+    const { plant, duty: fed } = read(network, duty, chemistry);
+    const found = branchesAlong(fed, {
+      from: 0.1e-3 / 3600,
+      to: 0.6e-3 / 3600,
+      plantAt: (Q) => compile(plant.network, { Q }).plant,
+      settingsAt: () => ({}),
+    });
+    const washed = found.turns.filter((t) => t.what === "gives way");
+    expect(washed.map((t) => t.as)).toEqual(["falls"]);
+    // mu S / (ks + S) - kd at S = 10 g/L, by 1 L.
+    expect(washed[0].at * 3600e3).toBeCloseTo((0.5 * 10) / 10.1 - 0.02, 3);
+  });
 });

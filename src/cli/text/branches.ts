@@ -60,8 +60,12 @@ export function branchesText(
 
 /** "ignites as it rises". */
 export function wordsOf({ what, as }: Turn): string {
-  const happens = { ignites: "ignites", "goes out": "goes out", ends: "the state ends", swings: "begins to swing" }[
-    what
-  ];
+  const happens = {
+    ignites: "ignites",
+    "goes out": "goes out",
+    ends: "the state ends",
+    swings: "begins to swing",
+    "gives way": "gives way to another state",
+  }[what];
   return `${happens} as it ${as}`;
 }

@@ -22,6 +22,11 @@ export const studyEntries = {
     says: ({ text }) => `'${text}' is no aim`,
     fix: "write a figure as in `report:`, one of `=`, `>=`, `<=`, and a value: `conversion of A >= 95 %`",
   }),
+  "aim-beyond": entry<{ figure: string; target: string; meant: string }>({
+    severity: "error",
+    says: ({ figure, target }) => `${figure} cannot be ${target}: all that is fed is 100 %`,
+    fix: ({ meant }) => meant,
+  }),
   "sweep-inputs": entry<{ count: number }>({
     severity: "error",
     says: ({ count }) => `a sweep goes over one or two inputs, not over ${count}`,
