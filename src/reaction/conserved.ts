@@ -18,16 +18,19 @@ export interface Conserved {
 export function conservedBy(numbers: readonly Float64Array[], size: number, species = size): Conserved {
   const rows = numbers.map((row) => row.slice());
   const consumed = Uint8Array.from({ length: size }, (_, i) => (i < species && rows.some((row) => row[i] < 0) ? 1 : 0));
-  const largest = rows.reduce((most, row) => row.reduce((m, x) => Math.max(m, Math.abs(x)), most), 0);
+  // Measures of species lie decades apart (counts and grams): what is nothing is told against its own column and row.
+  const columns = Float64Array.from({ length: size }, (_, i) => Math.max(...rows.map((row) => Math.abs(row[i])), 0));
+  const share = (x: number, i: number): number => (columns[i] > 0 ? Math.abs(x) / columns[i] : 0);
+  const weights = rows.map((row) => Math.max(...row.map((x, i) => share(x, i)), 0));
+  const isSome = (r: number, i: number): boolean => share(rows[r][i], i) > 1e-9 * weights[r];
   const free: number[] = [];
   for (let rank = 0; rank < rows.length; rank++) {
-    const pivot = pivotOf(rows, rank, (i) => !free.includes(i) && consumed[i] === 1, 1e-9 * largest);
-    const found =
-      pivot ??
-      pivotOf(rows, rank, (i) => !free.includes(i) && i < species, 1e-9 * largest) ??
-      pivotOf(rows, rank, (i) => !free.includes(i), 1e-9 * largest);
+    const among = (may: (i: number) => boolean) =>
+      pivotOf(rows, rank, (r, i) => may(i) && !free.includes(i) && isSome(r, i));
+    const found = among((i) => consumed[i] === 1) ?? among((i) => i < species) ?? among(() => true);
     if (!found) break;
     [rows[rank], rows[found.row]] = [rows[found.row], rows[rank]];
+    [weights[rank], weights[found.row]] = [weights[found.row], weights[rank]];
     const head = rows[rank][found.column];
     rows[rank] = rows[rank].map((x) => x / head);
     rows.forEach((row, r) => {
@@ -41,7 +44,7 @@ export function conservedBy(numbers: readonly Float64Array[], size: number, spec
   dependent.forEach((d, j) => {
     for (let k = 0; k < free.length; k++) {
       const x = rows[k][d];
-      follows[j * free.length + k] = Math.abs(x) > 1e-12 ? x : 0;
+      follows[j * free.length + k] = share(x, d) * columns[free[k]] > 1e-12 ? x : 0;
     }
   });
   return { free: Int32Array.from(free), dependent: Int32Array.from(dependent), follows };
@@ -50,14 +53,13 @@ export function conservedBy(numbers: readonly Float64Array[], size: number, spec
 function pivotOf(
   rows: readonly Float64Array[],
   from: number,
-  may: (column: number) => boolean,
-  least: number,
+  may: (row: number, column: number) => boolean,
 ): { row: number; column: number } | undefined {
   let best: { row: number; column: number } | undefined;
-  let size = least;
+  let size = 0;
   for (let r = from; r < rows.length; r++) {
     rows[r].forEach((x, column) => {
-      if (Math.abs(x) > size && may(column)) {
+      if (Math.abs(x) > size && may(r, column)) {
         size = Math.abs(x);
         best = { row: r, column };
       }

@@ -32,6 +32,9 @@ export interface SteadyState {
   readonly conserved: number;
 }
 
+/** Share of what is fed that the balance of a species over the whole plant may miss. */
+const closed = 1e-6;
+
 /** Back to SI, with the balances of the whole plant. */
 export function summary(plant: Plant, conditions: Conditions, walk: Settled): SteadyState {
   const { species, feeds, scale, size, heat } = conditions;
@@ -72,12 +75,17 @@ export function summary(plant: Plant, conditions: Conditions, walk: Settled): St
   const changed = sum((total) => addMade(total, plant, walk, conditions.reactionsAt));
   const made = Float64Array.from({ length: n }, (_, i) => changed[i] * scale[i]);
   const closure = fed.map((f, i) => (f + made[i] - left[i]) / (Math.max(f, left[i]) || 1));
+  // A balance of the whole that stays open is no result, whatever its nodes say.
+  const through = inPorts.reduce((all, p) => all + Math.max(p.flow, 0), 0);
+  const open = fed.findIndex((f, i) => Math.abs(f + made[i] - left[i]) > closed * through * scale[i]);
+  const worst =
+    walk.worst ?? (open < 0 || plant.outlets.length === 0 ? undefined : { node: plant.outlets[0].node, species: open });
   return {
     species,
-    converged: walk.worst === undefined,
-    worst: walk.worst && {
-      node: plant.columns.nameOf(walk.worst.node),
-      species: species[walk.worst.species] ?? "the temperature",
+    converged: worst === undefined,
+    worst: worst && {
+      node: plant.columns.nameOf(worst.node),
+      species: species[worst.species] ?? "the temperature",
     },
     residual: walk.residual,
     concentrations,
