@@ -72,7 +72,10 @@ export interface Look {
 
 /** Amounts over the whole run by species (mol, kg or a number, as the species is counted). */
 export interface TransientBalance extends Amounts {
-  /** (fed + held before + made - left - held) as a share of the largest of them; 0 is a closed balance. */
+  /**
+   * (fed + held before + made - left - held) as a share of the largest of them; 0 is a closed balance. What is made is counted
+   * body by body as what the body changes: this checks what passes between bodies, `conserved` what happens in them, too.
+   */
   readonly closure: Float64Array;
   /** How far sums that no reaction changes (elements, say) fail to close, the largest, as a share. */
   readonly conserved: number;
