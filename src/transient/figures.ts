@@ -44,6 +44,9 @@ export function transientFigures(
     if (line.what === "time-beyond") return beyondFigure(plant, duty, line, run, end, settings);
     if (line.what === "temperature") return temperatureFigure(duty, line, run, end, settings);
     if (run.stopped) return { name: line.text, value: Number.NaN, why: "undefined", unit: one };
+    if (line.what !== "concentration" && noneHasLeft(plant, run, line, end)) {
+      return { name: line.text, value: Number.NaN, why: "undefined", unit: one };
+    }
     const at = (t: number): Figure => speciesFigure(duty, run.species, line, streamsAt(plant, run, line, t), settings);
     const isShare = line.what === "conversion" || line.what === "yield" || line.what === "selectivity";
     return { ...at(end), ...(isShare && isUpset(duty) && plant.feeds.length > 0 ? rangeOf(run.times, at) : {}) };
@@ -60,6 +63,22 @@ function rangeOf(times: ArrayLike<number>, figure: (t: number) => Figure): Pick<
   const lowest = seen.reduce((least, e) => (e.value < least.value ? e : least));
   const highest = seen.reduce((most, e) => (e.value > most.value ? e : most));
   return { range: { lowest, highest } };
+}
+
+/** Has nothing at all come to where a figure looks, because the first of what is fed is still on its way? */
+function noneHasLeft(plant: Plant, run: Transient, line: Reported, end: number): boolean {
+  const flow = plant.feeds.reduce((sum, f) => sum + f.flow, 0);
+  if (run.start !== "contents" || !(end <= plant.volume.active / flow)) return false;
+  const row = new Float64Array(run.species.length);
+  const outlets = plant.outlets.filter((o) => o.flow > 0).map((o) => o.name);
+  const places = line.at === undefined ? outlets : outlets.filter((name) => name === line.at);
+  return (
+    places.length > 0 &&
+    places.every((name) => {
+      run.look(name).integral(end, row);
+      return row.every((x) => x === 0);
+    })
+  );
 }
 
 function temperatureFigure(duty: Duty, line: Reported, run: Transient, end: number, settings: DutySettings): Figure {

@@ -1,5 +1,7 @@
 import { describe, expect, test } from "vitest";
 import { checkDuty } from "../../src/check/duty.js";
+import { transientText } from "../../src/cli/text/transient.js";
+import { clockFrom } from "../../src/cli/times.js";
 import { compile } from "../../src/compile/compile.js";
 import { parseDuty } from "../../src/parse/duty.js";
 import { parseNetwork } from "../../src/parse/network.js";
@@ -97,6 +99,32 @@ describe("a duty in time", () => {
     expect(endOf(plant, duty) / 60).toBeCloseTo(150, 6);
     const mixed = read(tank, "feeds: {feed: {A: 1 mol/L}}");
     expect(endOf(mixed.plant, mixed.duty) / 60).toBeGreaterThan(50 * Math.log(1000));
+  });
+
+  test("before anything that is fed has come through, there is no conversion", () => {
+    const { plant, duty } = read(
+      tank.replace("stirred", "tubular"),
+      "feeds: {feed: {A: 1 mol/L}}\nreport: [conversion of A, A at product]",
+    );
+    for (const [until, why] of [
+      [40, "undefined"],
+      [60, undefined],
+    ] as const) {
+      const figures = transientFigures(plant, duty, transient(plant, duty.chemistry, duty, minutes(0, until)));
+      expect(figures.map((f) => f.why)).toEqual([why, undefined]);
+      if (!why) expect(figures[0].value).toBeCloseTo(1 - Math.exp(-1), 8);
+    }
+  });
+
+  test("balances that do not close are told", () => {
+    const { plant, duty } = read(tank, "feeds: {feed: {A: 1 mol/L}}");
+    const run = transient(plant, duty.chemistry, duty, minutes(0, 60));
+    const { balance } = run;
+    if (!balance) throw new Error("no balance");
+    const clock = clockFrom({ until: "60 min" }, plant.network.units.time, () => 3600);
+    expect(transientText(plant, duty, run, [], clock, [])).not.toContain("warning");
+    const off = { ...run, balance: { ...balance, conserved: 5e-4 } };
+    expect(transientText(plant, duty, off, [], clock, [])).toContain("The balances of this run are off by 0.0005");
   });
 
   test("grams by the molar mass, in feeds, limits and what is there at the start", () => {
