@@ -6,7 +6,7 @@ import { type MixingBounds, mixingBounds, positionBetween } from "./bounds.js";
 import { conditionsOf, type DutySettings } from "./conditions.js";
 import { exitAge } from "./exit-age.js";
 import { type Figure, figuresOf, meanFeed, speciesFigure } from "./figures.js";
-import { noCurve, type Premises, unknownPremises, unlikeBodies, warmPremises } from "./premises.js";
+import { noCurve, nothingReacts, type Premises, unknownPremises, unlikeBodies, warmPremises } from "./premises.js";
 import { type SteadyState, steadyState } from "./steady.js";
 import type { SteadyProgress } from "./walk.js";
 
@@ -74,5 +74,6 @@ export function predict(
     return { name: line.text, segregated, maximumMixedness, position };
   });
   const premises = [...known.values()].find((b) => b !== undefined)?.premises ?? (asked ? unknownPremises : undefined);
+  if (premises === nothingReacts) return { state, figures, bounds: figures.map(() => undefined), premises };
   return { state, figures, bounds, premises };
 }

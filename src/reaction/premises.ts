@@ -39,7 +39,16 @@ export const unlikeBodies: Premises = {
   says: "The bounds were not computed: constants differ from place to place (`local:`), so what the curve alone allows does not bound the vessel.",
 };
 
+/** Where nothing happens to what is fed, though the laws are not of first order. */
+export const nothingReacts: Premises = {
+  bound: "no",
+  rate: "not checked",
+  says: "The bounds were not computed: what is fed does not react by itself, since the laws need something that is not fed (cells that grow, a product that speeds its own making), and what comes back or is inside from the start decides.",
+};
+
 const samples = 200;
+/** Conversion in a batch of the whole range below which nothing has happened but rounding. */
+const nothing = 1e-9;
 
 /**
  * Looks at what the bounds rest on: one composition fed, and a rate that bends one way only over the range of conversion.
@@ -56,6 +65,7 @@ export function premisesOf(plant: Plant, conditions: Conditions, fed: Float64Arr
     };
   }
   const rate = bending(conditions, fed, longest);
+  if (rate === "nothing reacts") return nothingReacts;
   const says = {
     linear: "All rates are of first order, so the curve alone fixes the result and both bounds agree.",
     convex: "The rate falls ever more slowly as conversion grows (order above one): segregation converts the most.",
@@ -74,14 +84,20 @@ function oneComposition(plant: Plant, { feeds, scale }: Conditions): boolean {
 }
 
 /** Follows a batch: its rate over its extent, by second differences. */
-function bending({ reactions: { tube } }: Conditions, fed: Float64Array, longest: number): Premises["rate"] {
+function bending(
+  { reactions: { tube } }: Conditions,
+  fed: Float64Array,
+  longest: number,
+): Premises["rate"] | "nothing reacts" {
   const n = tube.size;
   const made = new Float64Array(n);
   const last = fed.slice();
   if (!passTube(tube, longest, last)) return "not checked";
   const moved = last.map((y, i) => y - fed[i]);
   const chief = moved.reduce((best, m, i) => (Math.abs(m) > Math.abs(moved[best]) ? i : best), 0);
-  if (moved.length === 0 || moved[chief] === 0) return "linear";
+  if (moved.length === 0) return "linear";
+  // Along a path that leads nowhere every law looks linear: it is asked away from it.
+  if (Math.abs(moved[chief]) <= nothing) return isLinear(tube, elsewhere(fed)) ? "linear" : "nothing reacts";
   // One reaction moves the composition along a line; otherwise the batch strays from it.
   const path = Array.from({ length: samples + 1 }, (_, k) => fed.map((y, i) => y + (k / samples) * moved[i]));
   const rates = path.map((y) => {
@@ -101,6 +117,10 @@ function bending({ reactions: { tube } }: Conditions, fed: Float64Array, longest
   }
   return up && down ? "mixed" : up ? "convex" : down ? "concave" : "linear";
 }
+
+/** Mixtures of everything, unlike what is fed. */
+const elsewhere = (fed: Float64Array): Float64Array[] =>
+  Array.from({ length: samples + 1 }, (_, k) => fed.map((y, i) => y + ((1 + (k % 7)) * (1 + i)) / (7 + i)));
 
 /** True where the Jacobian is the same all along the path. */
 function isLinear({ size: n, jacobian }: Conditions["reactions"]["tube"], path: readonly Float64Array[]): boolean {

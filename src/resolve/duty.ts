@@ -12,6 +12,7 @@ import { feedTemperaturesUnused, heatFits, resolveHeat } from "./duty-heat.js";
 import { resolveLocal } from "./duty-local.js";
 import { massEquations, type SettledFeeds, settleFeeds, settleLimit } from "./feed-basis.js";
 import { neverStarting } from "./never-starts.js";
+import { goesBack } from "./rate-values.js";
 import { resolveRegulated } from "./regulated.js";
 import { resolveReportLine } from "./report-line.js";
 import { aboveZero } from "./sign.js";
@@ -82,6 +83,7 @@ export function resolveDuty(
   if (chemistry && good && settled) {
     const mixtures = [...settled.feeds.values(), ...held.values()];
     const constants = new Map([...given.with].map(([name, { value }]) => [name, value]));
+    goesBack(chemistry, [given.with, ...[...local.values()].map((l) => l.constants)], tell);
     const everywhere = local.size === 0; // a constant that holds in one place only may be zero elsewhere
     if (everywhere) neverStarting(chemistry, { at, mixtures, constants, temperature: temperature?.of([]) }, tell);
   }

@@ -1,9 +1,11 @@
 import type { Chemistry } from "../model/chemistry.js";
+import type { Value } from "../model/value.js";
 import { lowDiscrepancy } from "../numerics/low-discrepancy.js";
 import type { Report } from "../problems/report.js";
 import type { Span } from "../text/source.js";
 import { type Dimension, dimensions, sameDimension } from "../units/dimension.js";
-import { formatNumber } from "../units/format.js";
+import { formatNumber, formatQuantity } from "../units/format.js";
+import { one } from "../units/unit.js";
 
 /** Where laws are looked at: concentrations from so little to so much, SI. */
 const [least, most] = [1e-3, 1e4];
@@ -27,6 +29,7 @@ export function ratesHold(chemistry: Chemistry, laws: readonly Span[], report: R
   for (const k of order) env[n + k] = constants[k].value.of(env);
   const points = pointsFor(n);
   let right = true;
+  const forwards = backwardsWith(chemistry, new Map()) === undefined;
   reactions.forEach((reaction, r) => {
     const { text, counts } = reaction;
     const rateAt = (c: ArrayLike<number>): number => {
@@ -49,7 +52,65 @@ export function ratesHold(chemistry: Chemistry, laws: readonly Span[], report: R
     const back = counts === "molecules" && !text.includes("<->") ? points.find((c) => rateAt(c) < 0) : undefined;
     if (back) report("rate-negative", laws[r], { text, where: where(back) });
   });
+  if (!right || !forwards) return right;
+  for (const { name, free, value } of constants) {
+    for (const bound of free?.between ?? []) {
+      const back = backwardsWith(chemistry, new Map([[name, bound.of([])]]));
+      if (!back) continue;
+      const allowed = `${name} = ${formatQuantity(bound.of([]), value.unit ?? bound.unit ?? one)}`;
+      report("rate-negative", bound.at, { ...back, allowed });
+      break;
+    }
+  }
   return right;
+}
+
+/** A reaction that goes one way, and where its rate is negative. */
+export interface Backwards {
+  readonly text: string;
+  readonly where: string;
+}
+
+/**
+ * The first reaction that is written to go one way and would go back somewhere between 1e-6 and 10 mol/L.
+ * @param set constants in place of the file's, SI
+ */
+export function backwardsWith(chemistry: Chemistry, set: ReadonlyMap<string, number>): Backwards | undefined {
+  const { species, constants, order, temperatureSlot, reactions } = chemistry;
+  const n = species.length;
+  const env = new Float64Array(temperatureSlot + 1);
+  env[temperatureSlot] = roomTemperature;
+  for (const k of order) env[n + k] = set.get(constants[k].name) ?? constants[k].value.of(env);
+  const points = pointsFor(n);
+  for (const { text, counts, rate } of reactions) {
+    if (counts !== "molecules" || text.includes("<->")) continue;
+    const rateAt = (c: ArrayLike<number>): number => {
+      for (let i = 0; i < n; i++) env[i] = c[i];
+      return rate(env);
+    };
+    const back = points.find((c) => rateAt(c) < 0);
+    if (!back) continue;
+    const where = speciesIn(rateAt, n, points).map(
+      (i) => `${species[i].name} = ${amount(back[i], chemistry.bases[0][i])}`,
+    );
+    return { text, where: where.join(", ") || "the values of the file" };
+  }
+  return undefined;
+}
+
+/** Constants that a document sets so that a law which the chemistry writes to go one way goes back. */
+export function goesBack(
+  chemistry: Chemistry,
+  places: readonly ReadonlyMap<string, { readonly at: Span; readonly value: Value }>[],
+  report: Report,
+): void {
+  if (backwardsWith(chemistry, new Map())) return;
+  for (const constants of places) {
+    for (const [name, { at, value }] of constants) {
+      const back = backwardsWith(chemistry, new Map([[name, value.of([])]]));
+      if (back) report("rate-backwards", at, { ...back, set: `${name} = ${formatQuantity(value.of([]), value.unit ?? one)}` });
+    }
+  }
 }
 
 /** Points spread over the logarithms of concentrations. */

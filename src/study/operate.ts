@@ -6,6 +6,7 @@ import type { Network } from "../model/network.js";
 import { constantsOf, type DutySettings, networkSettings } from "../reaction/conditions.js";
 import { type Figure, figuresOf } from "../reaction/figures.js";
 import { steadyState } from "../reaction/steady.js";
+import { backwardsWith } from "../resolve/rate-values.js";
 import { withTimes } from "../transient/in-time.js";
 import { sameSide } from "./draws.js";
 
@@ -55,9 +56,23 @@ export function operate(operation: Operation, row: Row = noRow): Operated {
   if (made.plant === undefined) return { cannot: made.cannot };
   const { duty } = operation;
   const settings = dutySettings(duty, row);
+  const back = goesBack(duty, row);
+  if (back !== undefined) return { cannot: back };
   const state = steadyState(made.plant, duty.chemistry, duty, settings);
   if (!state.converged) return { cannot: "the steady state did not converge" };
   return { figures: withTimes(made.plant, duty, figuresOf(made.plant, duty, state, settings), settings) };
+}
+
+/** Why a row that sets a constant of the chemistry below zero makes no sense: a law written to go one way would go back. */
+function goesBack({ chemistry }: Duty, row: Row): string | undefined {
+  const own = new Set(chemistry?.constants.map((c) => c.name));
+  const set = Object.entries(row.duty).flatMap(([key, value]): [string, number][] => {
+    const name = key.slice(key.lastIndexOf(".") + 1);
+    return value < 0 && own.has(name) ? [[name, value]] : [];
+  });
+  if (!chemistry || set.length === 0 || backwardsWith(chemistry, new Map())) return undefined;
+  const back = backwardsWith(chemistry, new Map(set));
+  return back && `'${back.text}' would run backwards: its rate is negative at ${back.where}`;
 }
 
 /** Values of figures by number; undefined where there are none. */

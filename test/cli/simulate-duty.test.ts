@@ -200,3 +200,39 @@ test("the same at the end of a start-up", async () => {
   const { document } = await json(["simulate", "tank.yaml", "--duty", "duty.yaml", "--transient"], { files: own });
   expect(document).toMatchObject({ report: [{ value: null, why: "infinite" }] });
 });
+
+test("bounds of mixing are not told where what is fed does not react by itself: cells that nobody feeds", async () => {
+  const monod = (rate: string): string =>
+    `chemistry: Cells\nformat: 1\nspecies: {S: {}, X: {}}\nconstants: {mu: 0.5 1/min, ks: 0.1 g/L}\nreactions: [{makes: {S: -2, X: 1}, rate: "${rate}"}]\n`;
+  const own = {
+    "tank.yaml": network("kind: stirred, volume: 100 L"),
+    "duty.yaml": `${duty.replace("A: 1 mol/L", "S: 10 g/L")}report: [conversion of S]\n`,
+  };
+  const grown = { ...own, "chemistry.yaml": monod("mu * S / (ks + S) * X") };
+  const { out } = await backmix(["simulate", "tank.yaml", "--duty", "duty.yaml"], { files: grown });
+  expect(out).not.toContain("All rates are of first order");
+  expect(out).not.toContain("if segregated");
+  expect(out).toContain("what is fed does not react by itself");
+  // A first-order law is one, also where nothing of its reactant is fed.
+  const linear = {
+    ...own,
+    "chemistry.yaml": chemistry("k * A", "1 1/min"),
+    "duty.yaml": `${duty.replace("1 mol/L", "0 mol/L")}report: [A at product]\n`,
+  };
+  const other = await backmix(["simulate", "tank.yaml", "--duty", "duty.yaml"], { files: linear });
+  expect(other.out).toContain("All rates are of first order");
+});
+
+test("a rate constant below zero that a duty sets is an error, in the place where it holds", async () => {
+  const oneWay = files["chemistry.yaml"]
+    .replace("makes: {A: -1}", "equation: A -> P")
+    .replace("{A: {}}", "{A: {}, P: {}}");
+  const own = {
+    "tank.yaml": network("kind: stirred, volume: 100 L"),
+    "chemistry.yaml": oneWay,
+    "duty.yaml": `${duty}local: {body: {k: -1 1/min}}\n`,
+  };
+  const { status, err } = await backmix(["simulate", "tank.yaml", "--duty", "duty.yaml"], { files: own });
+  expect(status).toBe(1);
+  expect(err).toContain("duty.yaml:5:16 rate-backwards: with k = −1 1/min, 'A -> P' would run backwards");
+});

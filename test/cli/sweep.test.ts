@@ -49,6 +49,17 @@ reactions: [{makes: {A: -1, P: 1}, rate: k * A}, {makes: {P: -1}, rate: k * P}]
 const sweep = (duty: string, ...args: string[]) => json(["sweep", "tank.yaml", "--duty", duty, ...args], { files });
 
 describe("sweep --over", () => {
+  test("has no figures where a law that goes one way would run backwards, and says so", async () => {
+    const own = { ...files, "decay.yaml": files["decay.yaml"].replace("makes: {A: -1, P: 1}", "equation: A -> P") };
+    const args = ["sweep", "tank.yaml", "--duty", "duty.yaml", "--over", "k=-0.1 1/min..0.1 1/min:3"];
+    const { document } = await json(args, { files: own });
+    expect(document.points[0]).toMatchObject({
+      figures: null,
+      cannot: expect.stringContaining("'A -> P' would run backwards"),
+    });
+    expect(at(document, "points.2.figures.0.value")).toBeCloseTo(0.5, 10);
+  });
+
   test("a point is what simulate gives there, and the closed form", async () => {
     const { status, document } = await sweep("duty.yaml", "--over", "size=100..400 L:4");
     expect(status).toBe(0);

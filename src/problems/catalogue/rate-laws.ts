@@ -14,11 +14,20 @@ export const rateLawEntries = {
     fix: ({ gone }) =>
       `write the law so that it stays finite, with a small concentration beside '${gone[0]}' in the divisor, such as (${gone[0]} + little)`,
   }),
-  "rate-negative": entry<{ text: string; where: string }>({
+  "rate-negative": entry<{ text: string; where: string; allowed?: string }>({
     severity: "warning",
-    says: ({ text, where }) =>
-      `'${text}' goes one way, but its rate is negative at ${where}: it would run backwards there and use up what it makes`,
-    fix: "write `<->` if it goes both ways, or correct the law",
+    says: ({ text, where, allowed }) =>
+      `'${text}' goes one way, but ${allowed === undefined ? "" : `at ${allowed}, which its bounds allow, `}its rate is negative at ${where}: it would run backwards there and use up what it makes`,
+    fix: ({ allowed }) =>
+      allowed === undefined
+        ? "write `<->` if it goes both ways, or correct the law"
+        : "let the bounds end where the rate does, or write `<->` if it goes both ways",
+  }),
+  "rate-backwards": entry<{ text: string; where: string; set: string }>({
+    severity: "error",
+    says: ({ text, where, set }) =>
+      `with ${set}, '${text}' would run backwards: it is written to go one way, and its rate is negative at ${where}`,
+    fix: "correct the value, or write `<->` in the chemistry if it goes both ways",
   }),
   "mass-not-kept": entry<{ text: string; left: string; right: string }>({
     severity: "warning",
