@@ -108,7 +108,8 @@ export function goesBack(
   for (const constants of places) {
     for (const [name, { at, value }] of constants) {
       const back = backwardsWith(chemistry, new Map([[name, value.of([])]]));
-      if (back) report("rate-backwards", at, { ...back, set: `${name} = ${formatQuantity(value.of([]), value.unit ?? one)}` });
+      if (back)
+        report("rate-backwards", at, { ...back, set: `${name} = ${formatQuantity(value.of([]), value.unit ?? one)}` });
     }
   }
 }
