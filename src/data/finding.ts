@@ -62,8 +62,8 @@ const wording = {
     weight: "caution",
     message: "less tracer came out than went in",
     couldBe:
-      "sorption or reaction, an outlet not measured or fed otherwise than by its flow, a tail not waited for, or a wrong dose, flow or calibration",
-    next: "check dose, flow and calibration; look for a second way out; measure longer",
+      "sorption or reaction, a part that passed between two readings (a bypass), an outlet not measured or fed otherwise than by its flow, a tail not waited for, or a wrong dose, flow or calibration",
+    next: "check dose, flow and calibration; look for a second way out; read faster at first; measure longer",
   },
   "recovery-high": {
     weight: "caution",

@@ -54,7 +54,7 @@ const rules: readonly ShapeRule[] = [
             evidence: `ln W is straight and meets the injection at ${number(line.intercept)} ± ${formatNumber(line.interceptError, 2)}: about ${percent(short)} of the flow came at once`,
           }
         : {
-            not: `bypass: W meets the injection at ${number(line.intercept)} ± ${formatNumber(line.interceptError, 2)}`,
+            not: `bypass: the decay, drawn back to the injection, begins at ${number(line.intercept)} ± ${formatNumber(line.interceptError, 2)} of the tracer; with a bypass it would begin well below 1`,
           };
     },
   },
@@ -64,7 +64,9 @@ const rules: readonly ShapeRule[] = [
       if (!main) return undefined;
       if (!late) return { not: "slow exchange: W is not seen far enough down to tell" };
       if (!isSlow({ main, late, ...s }))
-        return { not: `slow exchange: the late decay is ${number(late.rate / main.rate)} times the early one` };
+        return {
+          not: `slow exchange: the late decay is ${number(late.rate / main.rate)} times as fast as the early one; a quiet zone would make it much slower`,
+        };
       return {
         evidence: `the late decay is ${number(late.rate / main.rate)} times the early one; its line meets the injection at ${percent(Math.min(1, late.intercept))} of the tracer`,
       };
@@ -124,7 +126,7 @@ const rules: readonly ShapeRule[] = [
       const steep = s.mode - s.first < 0.15 * s.mean && Math.abs(s.first - delay) < 0.15 * s.mean;
       if (!(delay > limit.sure * lag) || share < limit.delayLeast)
         return {
-          not: `a delay: W meets the injection at ${number(line.intercept)} ± ${formatNumber(line.interceptError, 2)}`,
+          not: `a delay: the decay, drawn back to the injection, begins at ${number(line.intercept)} ± ${formatNumber(line.interceptError, 2)} of the tracer; with a tube before the tank it would begin well above 1`,
         };
       return steep
         ? {
@@ -140,7 +142,9 @@ const rules: readonly ShapeRule[] = [
       const words = `half the time from 16 to 84 % is ${number(width)} ± ${formatNumber(widthError, 2)} of the middle time`;
       return width + 2 * widthError < limit.plug && Math.abs(mode - mean) < 0.25 * mean
         ? { evidence: `${words}: as about ${formatNumber(1 / width ** 2, 2)} tanks in a row` }
-        : { not: `near plug flow: ${words}` };
+        : {
+            not: `near plug flow: the tracer left spread widely (${words}); in near plug flow it leaves within ${percent(limit.plug)} of it`,
+          };
     },
   },
   {
@@ -162,7 +166,7 @@ const rules: readonly ShapeRule[] = [
             evidence: `highest at ${percent(s.mode / s.mean)} of the mean, ln W straight from ${number(line.intercept)}, variance over squared mean ${number(s.relative)}`,
           }
         : {
-            not: `one well-mixed volume: W meets the injection at ${number(line.intercept)}, highest at ${percent(s.mode / s.mean)} of the mean`,
+            not: `one well-mixed volume: it would decay in one straight line of logarithms from 1 at the injection, highest at once; seen were ${number(line.intercept)} there, highest at ${percent(s.mode / s.mean)} of the mean time, variance over squared mean ${number(s.relative)} (1 when well mixed)`,
           };
     },
   },

@@ -86,7 +86,7 @@ function drawPanel(
   const worst = largest(Array.from(r.residual, Math.abs), 0) || 1;
   const stripTop = top + 42 + plotHeight + 20;
   const ar = linearAxis([-worst, worst], [stripTop + stripHeight, stripTop], 2, false);
-  const residualAxis = { ...ar, ticks: [-worst, 0, worst].map((v) => Number(v.toPrecision(2))) };
+  const residualAxis = { ...ar, ticks: [-1, 0, 1].map((side) => (side === 0 ? 0 : side * roundBelow(worst))) };
   const left = Math.max(leftRoom(ay), leftRoom(residualAxis));
   const plot: Box = { x: left, y: top + 42, width: width - left, height: plotHeight };
   const strip: Box = { ...plot, y: stripTop, height: stripHeight };
@@ -119,7 +119,9 @@ function drawPanel(
     leftAxis({ ...residualAxis, ticks: residualAxis.ticks.filter((t) => t !== 0) }, strip, ""),
     line(strip.x, ar.at(0), strip.x + strip.width, ar.at(0), "axis"),
     stems(r.time, r.residual, ax, ar),
-    drawCaption(caption([{ words: "residual", style: "quiet" }], strip.x + strip.width, strip.y - 16, "end")),
+    drawCaption(
+      caption([{ words: residualName(curve.value), style: "quiet" }], strip.x + strip.width, strip.y - 16, "end"),
+    ),
     bottomAxis(ax, strip, `time, ${curve.timeUnit}`),
     timeMarks(r, ax, strip),
   ].join("");
@@ -136,6 +138,19 @@ function drawPanel(
   };
   return { svg, bottom: strip.y + strip.height + (r.marks?.length ? 46 : 36), data };
 }
+
+/** 1, 2 or 5 times a power of ten, no more than a number. */
+function roundBelow(x: number): number {
+  const decade = Math.floor(Math.log10(x));
+  const leading = [5, 2, 1].find((d) => d <= x / 10 ** decade) ?? 1;
+  return Number(`${leading}e${decade}`);
+}
+
+/** "residual, g/L", in the unit of what is measured. */
+const residualName = (value: string): string => {
+  const at = value.lastIndexOf(", ");
+  return at < 0 || value.length < at + 3 ? "residual" : `residual${value.slice(at)}`;
+};
 
 /** Places beside a line, from its highest point rightwards, then leftwards. */
 function* besideLine(

@@ -31,12 +31,28 @@ export interface IntervalRow {
 
 const rowHeight = 30;
 
+/** Names are broken at about so many characters. */
+const nameLength = 26;
+/** Faces that stand in for the measured one are up to a fifth wider: no name may reach beyond the drawing in any. */
+const widerFace = 1.2;
+
+function nameLines(name: string): string[] {
+  const lines: string[] = [];
+  for (const word of name.split(" ")) {
+    const last = lines[lines.length - 1];
+    if (last !== undefined && last.length + 1 + word.length <= nameLength) lines[lines.length - 1] = `${last} ${word}`;
+    else lines.push(word);
+  }
+  return lines;
+}
+
 /** One row per value: a bar for the interval, a dot for the value, thin ends for the bounds of mixing. */
 export function drawIntervals(of: Intervals, options: PictureOptions & { readonly width?: number } = {}): Svg {
   const width = options.width ?? 640;
   const top = (options.untitled ? 8 : 36) + (of.reference ? 16 : 0);
-  const left = Math.max(0, ...of.rows.map((r) => textWidth(r.label, 12, "bold"))) + 16;
-  const right = Math.max(0, ...of.rows.map((r) => textWidth(r.text, 11))) + 16;
+  const left =
+    widerFace * Math.max(0, ...of.rows.flatMap((r) => nameLines(r.label).map((l) => textWidth(l, 12, "bold")))) + 16;
+  const right = widerFace * Math.max(0, ...of.rows.map((r) => textWidth(r.text, 11))) + 16;
   const all = of.rows.flatMap((r) => [
     r.value,
     r.low,
@@ -53,9 +69,10 @@ export function drawIntervals(of: Intervals, options: PictureOptions & { readonl
   let y = top;
   const parts: Svg[] = [];
   for (const r of of.rows) {
-    const middle = y + 12;
+    const more = 7 * (nameLines(r.label).length - 1);
+    const middle = y + 12 + more;
     parts.push(row(r, ax, middle, far));
-    y += r.bounds ? rowHeight + 18 : rowHeight;
+    y += Math.max(r.bounds ? rowHeight + 18 + more : 0, rowHeight + 2 * more);
   }
   const plot = { x: left, y: top, width: far - left, height: y - top };
   if (of.reference) {
@@ -84,7 +101,14 @@ export const drawChanges = (of: Intervals, options: PictureOptions & { readonly 
 function row(r: IntervalRow, ax: Axis, y: number, far: number): Svg {
   const look = r.accent ? " look" : "";
   return [
-    drawCaption(caption([{ words: r.label, style: "name" }], ax.at(ax.domain[0]) - 12, y - 7, "end")),
+    drawCaption(
+      caption(
+        nameLines(r.label).map((words) => ({ words, style: "name" as const })),
+        ax.at(ax.domain[0]) - 12,
+        y - 7 * nameLines(r.label).length,
+        "end",
+      ),
+    ),
     r.bounds ? boundsMarks(r.bounds, ax, y, far) : "",
     line(ax.at(r.low), y, ax.at(r.high), y, `interval${look}`),
     circle(ax.at(r.value), y, 4.5, `value${look}`),

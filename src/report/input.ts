@@ -124,6 +124,8 @@ export interface ReportFinding {
 }
 
 export interface Rival {
+  /** What its curve is called in figures, where names must be short. */
+  readonly short?: string;
   readonly network: string;
   readonly freeParameters: number;
   readonly aicc: number;

@@ -3,6 +3,7 @@ import { cautionsFor } from "../../src/report/cautions.js";
 import type { StudyReport } from "../../src/report/input.js";
 import { writeSummary } from "../../src/report/markdown.js";
 import { writeReport } from "../../src/report/report.js";
+import { nestedWords } from "../../src/report/study/nested-words.js";
 import { demo } from "./demo.js";
 
 describe("the report page", () => {
@@ -157,3 +158,16 @@ function unbalanced(page: string): string[] {
   }
   return [...wrong, ...open];
 }
+
+test("a ratio of variances beyond a thousand needs no digits", () => {
+  const nested = {
+    special: "A",
+    general: "B",
+    f: 2.41e7,
+    freedom: [1, 1540] as [number, number],
+    p: 0,
+    atBound: false,
+  };
+  expect(nestedWords(nested)).toContain("(F above 1000 on 1 and 1540 degrees of freedom, p below 0.0001)");
+  expect(nestedWords({ ...nested, f: 12.34 })).toContain("(F 12.3 on");
+});

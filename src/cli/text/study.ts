@@ -8,7 +8,7 @@ import { decisionWords } from "../../report/study/decision-words.js";
 import { regulatedCaution, regulatedLines } from "../../report/study/regulated-words.js";
 import { studyStatesWords } from "../../report/study/states-words.js";
 import type { StudyResult } from "../../study/result.js";
-import { formatNumber } from "../../units/format.js";
+import { formatNumber, formatQuantity } from "../../units/format.js";
 import { inUnit, type Unit } from "../../units/unit.js";
 import { blocks, type Column, table, wrap } from "./table.js";
 
@@ -72,7 +72,8 @@ function predictionsTable({ predictions }: StudyResult): string {
   if (predictions.length === 0) return "";
   const rows = predictions.map(({ duty, name, value, unit, interval95, bounds, rival }): Row => {
     const shown = people(name, unit);
-    const bound = (si: number | undefined): string => (si === undefined ? "" : formatNumber(inUnit(si, shown)));
+    const bound = (si: number | undefined): string =>
+      si === undefined ? "" : shown.name === "%" ? formatQuantity(si, shown) : formatNumber(inUnit(si, shown));
     const ends = [bound(bounds?.segregated), bound(bounds?.maximumMixedness)];
     return { by: rival.network.title, cells: [duty.title, name, estimate(name, value, interval95, shown), ...ends] };
   });

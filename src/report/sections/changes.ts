@@ -1,9 +1,8 @@
 import { drawChanges, type IntervalRow, intervalsTable } from "../../draw/intervals.js";
-import { formatNumber } from "../../units/format.js";
 import { chance } from "../digits.js";
 import { figure, type Html, list, section, table } from "../html.js";
 import type { Change, StudyReport } from "../input.js";
-import { estimateRow, grouped } from "./rows.js";
+import { estimateRow, grouped, withUnit } from "./rows.js";
 
 /** What each change would bring, beside today. */
 export function changesSection({ changes, decisions }: StudyReport): Html {
@@ -11,7 +10,7 @@ export function changesSection({ changes, decisions }: StudyReport): Html {
     c.skipped ? { words: c.name, under: c.skipped } : c.name,
     c.quantity,
     ...estimateRow("", c.estimate).slice(1),
-    formatNumber(c.today, 3),
+    withUnit(c.today, c.estimate.unit),
     chance(c.probabilityBetter),
   ]);
   const columns = [
@@ -29,7 +28,7 @@ export function changesSection({ changes, decisions }: StudyReport): Html {
       name: `change-${k + 1}`,
       drawing: drawChanges(intervals, { untitled: true }),
       data: { table: intervalsTable(intervals) },
-      caption: `${quantity} after each change, with the chance of being better than today.`,
+      caption: `After each change, with the chance of being better than today: ${quantity}.`,
     });
   });
   return section("changes", "Changes compared", [...drawn, table("Changes", columns, rows), list(decisions)]);

@@ -4,7 +4,7 @@ import { formatNumber } from "../../units/format.js";
 import { figureLine } from "../digits.js";
 import { type Cell, figure, type Html, list, section, table } from "../html.js";
 import type { Prediction, StudyReport } from "../input.js";
-import { estimateRow, grouped } from "./rows.js";
+import { estimateRow, grouped, withUnit } from "./rows.js";
 
 /** What the vessel makes under each duty: value, interval, where mixing would put it. */
 export function predictionsSection({ predictions, states = [], along }: StudyReport): Html {
@@ -12,7 +12,7 @@ export function predictionsSection({ predictions, states = [], along }: StudyRep
   const rows = predictions.map((p) => {
     const { bounds, boundsSay } = p;
     const between = bounds
-      ? `${formatNumber(bounds.segregated, 3)} to ${formatNumber(bounds.maximumMixedness, 3)}`
+      ? `${formatNumber(bounds.segregated, 3)} to ${withUnit(bounds.maximumMixedness, p.estimate.unit)}`
       : (boundsSay ?? "");
     return [
       { words: p.duty, under: p.name },

@@ -1,3 +1,4 @@
+import { formatNumber } from "../../units/format.js";
 import { atDecimals, chance } from "../digits.js";
 import { figure, type Html, list, paragraph, section, table } from "../html.js";
 import type { StudyReport } from "../input.js";
@@ -6,9 +7,9 @@ import type { StudyReport } from "../input.js";
 export function rivalsSection({ rivals, equals, nested, rivalCurves }: StudyReport): Html {
   const best = Math.min(...rivals.map((r) => r.aicc));
   const rows = rivals.map((r) => [
-    r.network,
+    r.short === undefined ? r.network : { words: r.network, under: `in figures: ${r.short}` },
     String(r.freeParameters),
-    atDecimals(r.aicc - best, 1),
+    r.aicc - best < 100 ? atDecimals(r.aicc - best, 1) : formatNumber(r.aicc - best),
     chance(r.weight),
     r.verdict,
   ]);

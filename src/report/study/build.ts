@@ -23,7 +23,7 @@ import { dataQuality, findingsOf } from "./data.js";
 import { decisionWords } from "./decision-words.js";
 import { driverName, methodWords, spreadWords } from "./driver-words.js";
 import { estimate, parameterEstimate, readingUnit } from "./estimate.js";
-import { curveFigures, rivalFigures, vesselFigure } from "./figures.js";
+import { curveFigures, rivalFigures, shortName, vesselFigure } from "./figures.js";
 import { furtherWords, sameCurveWords } from "./further-words.js";
 import { identifiabilityOf } from "./identifiability.js";
 import { inTimeFigures } from "./in-time-figures.js";
@@ -109,6 +109,7 @@ function rivalRow(r: Ranked, place: number, result: StudyResult): Rival {
           : `leaves ${ratioWords(r, lead)} as much unexplained as the best`;
   return {
     network: r.rival.network.title,
+    ...(result.ranking.length > 1 ? { short: shortName(r) } : {}),
     freeParameters: r.fit?.freeParameters ?? 0,
     aicc: r.fit ? r.standing.criterion : Number.NaN,
     weight: r.standing.weight,

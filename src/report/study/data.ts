@@ -10,7 +10,7 @@ import { secondLook, traitsOf } from "./traits.js";
 export function dataQuality(result: StudyResult): DataQuality[] {
   return result.readings.flatMap(({ trial, moments }) =>
     moments.readings.map((r): DataQuality => {
-      const reasons = moments.findings.filter((f) => f.at === r.at).map((f) => `${f.message} (${f.evidence})`);
+      const reasons = moments.findings.filter((f) => f.at === r.at).map((f) => f.message);
       return {
         trial: trial.title,
         at: r.at,
@@ -57,12 +57,7 @@ function figureEstimate(f: Figure, percent: boolean): Estimate {
 /** What the logs and the best fit tell, and what they do not. */
 export function findingsOf(result: StudyResult): { findings: ReportFinding[]; notSupported: string[] } {
   const several = result.readings.length > 1;
-  const fromData = result.readings.flatMap(({ trial, moments }) =>
-    moments.findings.map((f): ReportFinding => {
-      const where = several ? `${trial.title}, ${f.at}: ` : `${f.at}: `;
-      return { message: `${where}${f.message}`, evidence: f.evidence, couldBe: f.couldBe, next: f.next };
-    }),
-  );
+  const fromData = fromTests(result);
   const best = result.ranking[0];
   const fromFit = (best?.fit?.findings ?? []).map(
     (f): ReportFinding => ({ message: f.message, evidence: evidenceWords(f.evidence), next: f.fix }),
@@ -79,6 +74,22 @@ export function findingsOf(result: StudyResult): { findings: ReportFinding[]; no
     moments.notSupported.map((words) => (several ? `${trial.title}: ${words}` : words)),
   );
   return { findings: [...fromTraits, ...fromFit, ...fromData], notSupported };
+}
+
+/** What the tests show, once for all tests that show it: the evidence says where. */
+function fromTests({ readings }: StudyResult): ReportFinding[] {
+  const found = readings.flatMap(({ trial, moments }) =>
+    moments.findings.map((f) => ({ f, where: readings.length > 1 ? `${trial.title}, ${f.at}` : f.at })),
+  );
+  const same = new Map<string, typeof found>();
+  for (const one of found) same.set(one.f.message, [...(same.get(one.f.message) ?? []), one]);
+  return [...same.values()].map((all): ReportFinding => {
+    const [{ f, where }] = all;
+    const { couldBe, next } = f;
+    return all.length === 1
+      ? { message: `${where}: ${f.message}`, evidence: f.evidence, couldBe, next }
+      : { message: f.message, evidence: all.map((x) => `${x.where}: ${x.f.evidence}`).join("; "), couldBe, next };
+  });
 }
 
 const evidenceWords = (evidence: Readonly<Record<string, number | string>>): string =>

@@ -9,9 +9,10 @@ import { readingLabel, type Trial } from "../../model/trial.js";
 import type { Ranked, StudyResult } from "../../study/result.js";
 import { holdUp } from "../../units/basis.js";
 import { dimensions } from "../../units/dimension.js";
+import { formatNumber } from "../../units/format.js";
 import { differenceInUnit, inUnit, type Unit } from "../../units/unit.js";
 import { estimateWords } from "../digits.js";
-import type { Figure } from "../input.js";
+import type { Estimate, Figure } from "../input.js";
 import { estimate } from "./estimate.js";
 import { intervalOf } from "./interval-of.js";
 import { residualFigure } from "./residual-figure.js";
@@ -26,7 +27,7 @@ export function vesselFigure(ranked: Ranked, trials: readonly Trial[]): Figure |
     plant.network.compartments.flatMap((c) => {
       const volume = c.values.volume;
       const known = volume && intervalOf(volume, plant, fit);
-      const words = known && estimateWords(estimate(volume.of(plant.env), known, units)).interval;
+      const words = known && volumeInterval(estimate(volume.of(plant.env), known, units));
       return words ? [[c.name, words] as const] : [];
     }),
   );
@@ -42,6 +43,15 @@ export function vesselFigure(ranked: Ranked, trials: readonly Trial[]): Figure |
     data: { table: sheetTable(sheet) },
     caption: `The vessel as fitted by '${rival.network.title}', at the flow of the file. Area is ${holdUp(plant.network.basis)}, width is flow; behind a ${holdUp(plant.network.basis)} what the fit leaves possible (95 %).`,
   };
+}
+
+/** An interval with as many digits as the volume before it is drawn with, where they tell its ends apart. */
+function volumeInterval(of: Estimate): string {
+  const { interval } = estimateWords(of);
+  if (interval === "" || of.low === undefined || of.high === undefined || !Number.isFinite(of.high - of.low))
+    return interval;
+  const [low, high] = [formatNumber(of.low, 3), formatNumber(of.high, 3)];
+  return low === high ? interval : `${low} to ${high}`;
 }
 
 /** Measured against fitted of the best rival, and what is left between them, for every trial. */

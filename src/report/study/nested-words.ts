@@ -10,5 +10,5 @@ export function nestedWords({ special, general, f, freedom, p, atBound }: Nested
       : `the data do not ask for the ${more} more: keep the simpler one unless physics says otherwise`;
   const chance = p < 1e-4 ? "p below 0.0001" : `p ${formatNumber(p, 2)}`;
   const bound = atBound ? "; the special case lies at a bound, where this test is on the careful side" : "";
-  return `'${special}' is a special case of '${general}': ${says} (F ${formatNumber(f, 3)} on ${freedom[0]} and ${formatNumber(freedom[1], 3)} degrees of freedom, ${chance})${bound}`;
+  return `'${special}' is a special case of '${general}': ${says} (F ${f > 1000 ? "above 1000" : formatNumber(f, 3)} on ${freedom[0]} and ${formatNumber(freedom[1], 3)} degrees of freedom, ${chance})${bound}`;
 }

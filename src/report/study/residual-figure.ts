@@ -32,7 +32,7 @@ export function residualFigure(
   return {
     name: `residuals-${k + 1}`,
     ...made,
-    caption: `${trial.title}: weighted residuals and how neighbours hang together. In the grey bands lie 95 % of what independent residuals would give: a pattern, or bars beyond the band, is curve that this network does not explain, or noise that comes in waves.`,
+    caption: `${trial.title}: weighted residuals and how neighbours hang together. In the shaded bands lie 95 % of what independent residuals would give: a pattern, or bars beyond the band, is curve that this network does not explain, or noise that comes in waves.`,
   };
 }
 
