@@ -5,6 +5,7 @@ import type { Input } from "../study/inputs.js";
 import { type Axis, spaced } from "../study/sweep.js";
 import { nearest } from "../text/nearest.js";
 import { dimensions, sameDimension } from "../units/dimension.js";
+import { formatQuantity } from "../units/format.js";
 import type { Unit } from "../units/unit.js";
 import { UsageError } from "./usage.js";
 
@@ -69,6 +70,11 @@ export function rangeFrom(text: string, input: Input, option: string): Range {
   );
   const [from, to] = [lower.si, upper.si];
   if (!(from < to)) throw new UsageError(`${option}: the lower end comes first, and is below the other`);
+  const { limits } = input;
+  if (limits && (from < limits[0] || to > limits[1])) {
+    const [low, high] = limits.map((v) => formatQuantity(v, input.unit));
+    throw new UsageError(`${option}: '${input.name}' lies between ${low} and ${high}`);
+  }
   const equal = log !== undefined;
   if (equal && !(from > 0)) throw new UsageError(`${option}: equal ratios need a lower end above 0`);
   if (equal && sameDimension(input.dimension, dimensions.temperature)) {

@@ -3,7 +3,7 @@ import type { Chemistry } from "../model/chemistry.js";
 import type { Duty } from "../model/duty.js";
 import { type Dimension, dimensions } from "../units/dimension.js";
 import { constantsOf, type DutySettings } from "./constants.js";
-import { exchangersOf, type FeedExchanger } from "./exchangers.js";
+import { exchangersOf, type FeedExchanger, sizeName } from "./exchangers.js";
 import { behindWall, type Wall, wallsOf } from "./jacket.js";
 import { bindKinetics, type Reactions } from "./kinetics.js";
 import { placesByNode } from "./places.js";
@@ -100,7 +100,7 @@ export function conditionsOf(
     numbers: [...new Set([reactions, ...own.values()])].flatMap(({ cell }) => cell.numbers),
     spends: [...spends],
     ...(heat
-      ? { heat: { capacity: heat.capacity, wallAt, exchangers: exchangersOf(plant, duty, heat.capacity) } }
+      ? { heat: { capacity: heat.capacity, wallAt, exchangers: exchangersOf(plant, duty, heat.capacity, settings) } }
       : {}),
   };
 }
@@ -136,6 +136,10 @@ export function dutyInputs(chemistry: Chemistry | undefined, duty: Duty): DutyIn
   for (const [place, { temperature, conductance }] of duty.heat?.jackets ?? []) {
     add(`${place}.jacket`, temperature.of([]), temperature.sd?.([]));
     add(`${place}.conductance`, conductance.of([]), conductance.sd?.([]));
+  }
+  for (const exchanger of duty.heat?.exchangers ?? []) {
+    const { value } = exchanger.size;
+    add(sizeName(exchanger), value.of([]), value.sd?.([]));
   }
   if (duty.heat && chemistry) {
     add("heat-capacity", heatCapacityOf(chemistry, {}), chemistry.heatCapacity?.sd?.([]));

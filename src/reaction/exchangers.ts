@@ -1,5 +1,6 @@
 import type { Plant } from "../compile/plant.js";
-import type { Duty } from "../model/duty.js";
+import type { Duty, Exchanger } from "../model/duty.js";
+import type { DutySettings } from "./constants.js";
 
 /** A feed that what leaves at an outlet warms before it enters. */
 export interface FeedExchanger {
@@ -10,8 +11,11 @@ export interface FeedExchanger {
   readonly gain: number;
 }
 
+/** What the size of an exchanger is called among the inputs of a duty: `feed.effectiveness`, `feed.conductance`. */
+export const sizeName = ({ feed, size }: Pick<Exchanger, "feed" | "size">): string => `${feed}.${size.is}`;
+
 /** The exchangers of a duty at the flows of a plant; those without a flow on either side are left out. */
-export function exchangersOf(plant: Plant, duty: Duty, capacity: number): FeedExchanger[] {
+export function exchangersOf(plant: Plant, duty: Duty, capacity: number, settings: DutySettings = {}): FeedExchanger[] {
   return (duty.heat?.exchangers ?? []).flatMap(({ feed: feedName, outlet: outletName, size }): FeedExchanger[] => {
     const feed = plant.feeds.findIndex((f) => f.name === feedName);
     const outlet = plant.outlets.findIndex((o) => o.name === outletName);
@@ -19,9 +23,11 @@ export function exchangersOf(plant: Plant, duty: Duty, capacity: number): FeedEx
     const [cold, hot] = [plant.feeds[feed].flow, plant.outlets[outlet].flow];
     if (!(cold > 0) || !(hot > 0)) return [];
     const smaller = Math.min(cold, hot);
-    const value = size.value.of([]);
+    const value = settings[sizeName({ feed: feedName, size })] ?? size.value.of([]);
     const share =
-      size.is === "effectiveness" ? value : counterflow(value / (capacity * smaller), smaller / Math.max(cold, hot));
+      size.is === "effectiveness"
+        ? Math.min(Math.max(value, 0), 1)
+        : counterflow(Math.max(value, 0) / (capacity * smaller), smaller / Math.max(cold, hot));
     return [{ feed, outlet, gain: (share * smaller) / cold }];
   });
 }

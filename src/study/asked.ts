@@ -85,5 +85,9 @@ function rangeIn(
   if (!ends) return { skipped: `nothing says between what '${name}' may move in this network` };
   const alike = between?.every((v) => v.dimension.every((d, i) => d === input.dimension[i])) ?? true;
   if (!alike) return { skipped: `the range of '${name}' is of another kind than its value` };
+  const { limits } = input;
+  if (limits && (ends[0] < limits[0] || ends[1] > limits[1])) {
+    return { skipped: `the range of '${name}' goes beyond what it can be` };
+  }
   return { input, from: ends[0], to: ends[1], log: log ?? (input.log && ends[0] > 0) };
 }

@@ -1,6 +1,7 @@
 import { evaluateNames } from "../compile/evaluate.js";
 import type { Value } from "../model/value.js";
 import { constantsOf, dutyInputs, networkSettings } from "../reaction/conditions.js";
+import { sizeName } from "../reaction/exchangers.js";
 import { siUnit } from "../units/describe.js";
 import type { Dimension } from "../units/dimension.js";
 import type { Unit } from "../units/unit.js";
@@ -20,13 +21,15 @@ export interface Input {
   /** Declared bounds, SI. */
   readonly between: readonly [number, number] | undefined;
   readonly log: boolean;
+  /** What no value may pass, SI. */
+  readonly limits?: readonly [number, number];
   /** One standard deviation that is declared of it, where it has the value `at`, SI; undefined: taken to be known, or fitted. */
   sd?(at: number): number;
 }
 
 /**
  * Every input: constants of the chemistry (`k1`, and `bulk.k1` where it holds there only), what feeds bring (`feed.A`, and
- * `feed.A.to` of an upset), the temperature (with heat balances `feed.temperature`, `bulk.jacket`, `bulk.conductance`, `heat-capacity`); then parameters and constants of the network and `feed.flow`. A name that both have is the chemistry's, as in `with:`.
+ * `feed.A.to` of an upset), the temperature (with heat balances `feed.temperature`, `bulk.jacket`, `bulk.conductance`, `heat-capacity`, `feed.effectiveness` of an exchanger); then parameters and constants of the network and `feed.flow`. A name that both have is the chemistry's, as in `with:`.
  */
 export function inputsOf(operation: Operation): Input[] {
   const { network, duty, values } = operation;
@@ -72,6 +75,10 @@ export function inputsOf(operation: Operation): Input[] {
     for (const [place, { temperature, conductance }] of duty.heat.jackets) {
       add(`${place}.jacket`, "duty", temperature, temperature.of([]));
       add(`${place}.conductance`, "duty", conductance, conductance.of([]));
+    }
+    for (const exchanger of duty.heat.exchangers) {
+      const { is, value } = exchanger.size;
+      add(sizeName(exchanger), "duty", value, value.of([]), is === "effectiveness" ? { limits: [0, 1] } : {});
     }
     if (chemistry?.heatCapacity) add("heat-capacity", "duty", chemistry.heatCapacity, chemistry.heatCapacity.of([]));
   }

@@ -132,13 +132,13 @@ export const dutyShape = record({
           },
           effectiveness: {
             shape: quantity("ratio"),
-            says: "The heat that passes as a share of what could: the smaller of the two flows brought to the other's temperature.",
+            says: "The heat that passes as a share of what could: the smaller of the two flows brought to the other's temperature. Sweeps and aims call it `feed.effectiveness`, after the feed.",
             example: "70 %",
             snippet: "70 %",
           },
           conductance: {
             shape: quantity("heat conductance"),
-            says: "Instead of `effectiveness`: coefficient times area of an exchanger in counterflow, which follows the flows.",
+            says: "Instead of `effectiveness`: coefficient times area of an exchanger in counterflow, which follows the flows. Sweeps and aims call it `feed.conductance`.",
             example: "200 W/K",
           },
         },
