@@ -117,7 +117,10 @@ describe("laws", () => {
     const read = (text: string) => {
       const { document } = parseNetwork(text);
       const plant = document && compile(document).plant;
-      return plant && { streams: plant.streams, nodes: plant.nodes, units: document.units.time.name };
+      if (!plant) return undefined;
+      // Bodies that are formulas hold functions, which are never alike.
+      const nodes = plant.nodes.map(({ name, part, volume, inflow }) => ({ name, part, volume, inflow }));
+      return { streams: plant.streams, nodes, units: document.units.time.name };
     };
     const networks = shipped.filter((f) => f.startsWith("networks") && parseNetwork(readFileSync(f, "utf8")).document);
     expect(networks.length).toBeGreaterThan(3);
