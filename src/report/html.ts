@@ -37,25 +37,30 @@ export function section(id: string, heading: string, parts: readonly Html[]): Ht
   return body === "" ? "" : `<section id="${id}"><h2>${escapeText(heading)}</h2>${body}</section>`;
 }
 
+const spaceBeforeUnit = /(\d)[ \u2009](?=%|°|(?:[kmµcM]?(?:L|g|m|s|mol|W|K|Pa|J)|min|h|d|m³|degC)(?![\p{L}\d]))/gu;
+
+/** Words of a page: a number is not parted from its unit at the end of a line. */
+const prose = (words: string): Html => escapeText(words.replace(spaceBeforeUnit, "$1\u00a0"));
+
 export const paragraph = (words: string, kind?: string): Html =>
-  `<p${kind ? ` class="${kind}"` : ""}>${escapeText(words)}</p>`;
+  `<p${kind ? ` class="${kind}"` : ""}>${prose(words)}</p>`;
 
 export function list(items: readonly string[], ordered = false): Html {
   if (items.length === 0) return "";
   const tag = ordered ? "ol" : "ul";
-  return `<${tag}>${items.map((i) => `<li>${escapeText(i)}</li>`).join("")}</${tag}>`;
+  return `<${tag}>${items.map((i) => `<li>${prose(i)}</li>`).join("")}</${tag}>`;
 }
 
 /** Terms with what they mean. */
 export function terms(pairs: readonly (readonly [term: string, says: string])[]): Html {
   if (pairs.length === 0) return "";
-  return `<dl>${pairs.map(([t, s]) => `<dt>${escapeText(t)}</dt><dd>${escapeText(s)}</dd>`).join("")}</dl>`;
+  return `<dl>${pairs.map(([t, s]) => `<dt>${escapeText(t)}</dt><dd>${prose(s)}</dd>`).join("")}</dl>`;
 }
 
 /** A drawing with its caption and, for the page's script, the numbers behind it. */
 export function figure({ name, drawing, caption, data }: Figure): Html {
   const numbers = data ? `<script type="application/json">${embeddedJson(embedded(name, data))}</script>` : "";
-  return `<figure id="figure-${escapeText(name)}" data-name="${escapeText(name)}"><div class="drawing">${onPage(drawing)}</div><figcaption>${escapeText(caption)}</figcaption>${numbers}</figure>`;
+  return `<figure id="figure-${escapeText(name)}" data-name="${escapeText(name)}"><div class="drawing">${onPage(drawing)}</div><figcaption>${prose(caption)}</figcaption>${numbers}</figure>`;
 }
 
 /** A drawing without the style and definitions that all drawings of a page share (`sharedDrawing`). */
