@@ -45,7 +45,7 @@ export function writeSummary(report: StudyReport): string {
 }
 
 /** As many findings as leave room on the page; all of them, and what the data do not support, are in the report. */
-const mostFindings = 6;
+const mostFindings = 5;
 
 function firstFindings({ findings }: StudyReport): string[] {
   const told = findings.slice(0, mostFindings).map((f) => `${f.message} (${f.evidence})`);

@@ -50,15 +50,15 @@ export function testedFlows(study: Study): { lines: string[]; extrapolated: stri
     }),
   );
   const looks = [...study.sweeps.flatMap((s) => s.over), ...study.aims.map((a) => a.by)];
-  const ranges = feeds.flatMap((t) =>
-    looks.flatMap(({ name, between }) => {
-      if (name !== `${t.feed.name}.flow` || !between || !between.some((q) => isBeyond(t, q.of([])))) return [];
-      return [
-        `${name} is looked at from ${say(t, between[0].of([]))} to ${say(t, between[1].of([]))}, tested ${range(t)}`,
-      ];
-    }),
-  );
-  return { lines, extrapolated: [...duties, ...new Set(ranges)] };
+  const ranges = feeds.flatMap((t) => {
+    const ends = looks.flatMap(({ name, between }) =>
+      name === `${t.feed.name}.flow` && between ? between.map((q) => q.of([])) : [],
+    );
+    if (!ends.some((q) => isBeyond(t, q))) return [];
+    const looked = `from ${say(t, Math.min(...ends))} to ${say(t, Math.max(...ends))}`;
+    return [`${t.feed.name}.flow is looked at ${looked}, tested ${range(t)}`];
+  });
+  return { lines, extrapolated: [...duties, ...ranges] };
 }
 
 /** Does a duty run at a flow that no trial was made near? In words to stand behind a number, or nothing. */
