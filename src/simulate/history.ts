@@ -1,3 +1,4 @@
+import { enlarged, lastUpTo } from "../numerics/growing.js";
 /** Places within a step at which its polynomials are known: its start, and the stages. */
 export interface StepBasis {
   /** From 0 (start) to 1 (end), ascending. */
@@ -140,30 +141,17 @@ export class History {
     let k = this.last < steps ? this.last : steps - 1;
     if (!(starts[k] <= soft) || (k + 1 < steps && starts[k + 1] <= soft)) {
       if (k + 2 < steps && starts[k + 1] <= soft && starts[k + 2] > soft) k++;
-      else {
-        let [low, high] = [0, steps];
-        while (high - low > 1) {
-          const middle = (low + high) >> 1;
-          if (starts[middle] <= soft) low = middle;
-          else high = middle;
-        }
-        k = low;
-      }
+      else k = lastUpTo(starts, steps, soft);
     }
     this.last = k;
     return k;
   }
 
   private grow(): void {
-    const more = (a: Float64Array, length: number) => {
-      const b = new Float64Array(length);
-      b.set(a);
-      return b;
-    };
     const room = 2 * this.starts.length;
-    this.starts = more(this.starts, room);
-    this.lengths = more(this.lengths, room);
-    this.values = more(this.values, room * this.stride);
-    this.before = more(this.before, (room + 1) * this.signals);
+    this.starts = enlarged(this.starts, room);
+    this.lengths = enlarged(this.lengths, room);
+    this.values = enlarged(this.values, room * this.stride);
+    this.before = enlarged(this.before, (room + 1) * this.signals);
   }
 }

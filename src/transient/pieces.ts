@@ -1,3 +1,4 @@
+import { enlarged, lastUpTo } from "../numerics/growing.js";
 import { radauCoefficients } from "../numerics/radau-coefficients.js";
 import { stepBasis } from "../simulate/history.js";
 import type { Signal } from "./signal.js";
@@ -133,28 +134,17 @@ export class Pieces implements Signal {
     const soft = t + side * sameTime * t;
     let k = Math.min(this.last, count - 1);
     if (!(starts[k] <= soft) || (k + 1 < count && starts[k + 1] <= soft)) {
-      let [low, high] = [0, count];
-      while (high - low > 1) {
-        const middle = (low + high) >> 1;
-        if (starts[middle] <= soft) low = middle;
-        else high = middle;
-      }
-      k = low;
+      k = lastUpTo(starts, count, soft);
     }
     this.last = k;
     return k;
   }
 
   private grow(): void {
-    const more = (a: Float64Array, length: number) => {
-      const b = new Float64Array(length);
-      b.set(a);
-      return b;
-    };
     const room = 2 * this.starts.length;
-    this.starts = more(this.starts, room);
-    this.lengths = more(this.lengths, room);
-    this.values = more(this.values, room * this.stride);
-    this.sums = more(this.sums, (room + 1) * this.width);
+    this.starts = enlarged(this.starts, room);
+    this.lengths = enlarged(this.lengths, room);
+    this.values = enlarged(this.values, room * this.stride);
+    this.sums = enlarged(this.sums, (room + 1) * this.width);
   }
 }
