@@ -37,14 +37,16 @@ const arcRoom = 36;
 const sideBySide = 22;
 const captionGap = 5;
 
-/** Name, volume and note of a body in at most two lines. */
+/** Name, volume and note of a body in at most three lines. */
 export function bodyWords(body: SheetBody, sheet: FlowSheet, scale: Scale): readonly Words[] {
   const name: Words = { words: body.label ?? body.name, style: "name" };
   const parts: string[] = [];
   if (body.volume > 0) parts.push(amount(body.volume, sheet.units.volume));
   if (body.volume > 0 && body.volume * scale.area < 0.98 * 64) parts.push("drawn larger");
   if (body.note) parts.push(body.note);
-  return parts.length === 0 ? [name] : [name, { words: parts.join(", "), style: body.accent ? "look" : "quiet" }];
+  const second: readonly Words[] =
+    parts.length === 0 ? [] : [{ words: parts.join(", "), style: body.accent ? "look" : "quiet" }];
+  return [name, ...second, ...(body.tilesSay ? [{ words: body.tilesSay, style: "quiet" as const }] : [])];
 }
 
 /**

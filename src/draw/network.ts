@@ -1,4 +1,5 @@
 import { circle, element, group, line, path, rectangle } from "../svg/marks.js";
+import { mosaicBody } from "../svg/mosaic-body.js";
 import { type Point, samples, spinePath } from "../svg/spine.js";
 import { type Box, px, type Svg } from "../svg/svg.js";
 import type { Arcs } from "./blocks.js";
@@ -42,6 +43,7 @@ export function drawNetwork(sheet: FlowSheet, options: PictureOptions = {}): Svg
 
 /** The kind's picture; with a tone, the same once in the paper's colour, since streams end under it, and once in the tone. */
 function drawBody({ body, box }: Layout["bodies"][number]): Svg {
+  if (body.tiles) return mosaicBody(box, body.tiles, toneStrength);
   const own = body.picture?.(box) ?? rectangle(box, "terminal");
   if (body.tone === undefined) return own;
   return group("base", [own]) + element("g", { class: "toned", "fill-opacity": toneStrength(body.tone) }, own);
@@ -56,7 +58,7 @@ export function inWords(sheet: FlowSheet): string {
     .filter((b) => b.volume > 0)
     .map(
       (b) =>
-        `${b.label ?? b.name} ${amount(b.volume, sheet.units.volume)}${b.note ? ` (${b.note})` : ""}${b.role === "dead" ? " (out of reach)" : ""}`,
+        `${b.label ?? b.name} ${amount(b.volume, sheet.units.volume)}${b.note ? ` (${[b.note, b.tilesSay].filter(Boolean).join(", ")})` : ""}${b.role === "dead" ? " (out of reach)" : ""}`,
     );
   const streams = sheet.streams.map((s) => {
     const flow = amount(s.flow, sheet.units.flow);
@@ -194,6 +196,10 @@ function legendOf(sheet: FlowSheet, { bounds, scale }: Layout): { marks: Svg; ca
   if (sheet.tones) {
     if (captions.length > 0) x += 37 + captions[captions.length - 1].box.width + 26;
     const { quantity, low, high } = sheet.tones;
+    if (low === high) {
+      captions.push(caption([{ words: `${quantity} ${low} everywhere`, style: "quiet" }], x, top + 7));
+      return { marks: marks.join(""), captions, box: { x: bounds.x, y: top, width: 1, height: 28 } };
+    }
     const first = caption([{ words: `${quantity} ${low}`, style: "quiet" }], x, top + 7);
     const bar = first.box.x + first.box.width + 7;
     marks.push(...toneBar(bar, top + 6));

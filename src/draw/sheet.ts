@@ -1,3 +1,4 @@
+import type { Tile } from "../svg/mosaic-body.js";
 import type { Box, Svg } from "../svg/svg.js";
 
 /** What a flow diagram shows, apart from any engine: bodies of liquid, streams between them, and how to print both. */
@@ -10,7 +11,7 @@ export interface FlowSheet {
   /** Bodies that belong together, outer groups first: parts. */
   readonly groups?: readonly SheetGroup[];
   readonly units: { readonly volume: SheetUnit; readonly flow: SheetUnit };
-  /** What the tones of the bodies tell, where they have any: "mean age", and the values at the two ends of the scale in words. */
+  /** What the tones of the bodies tell, where they have any: "mean age", and the values at the two ends of the scale in words; the same words where all are equal. */
   readonly tones?: { readonly quantity: string; readonly low: string; readonly high: string };
 }
 
@@ -49,6 +50,10 @@ export interface SheetBody {
   readonly stands?: number;
   /** How strong its tone is, 0 to 1, in place of the kind's own tint. */
   readonly tone?: number;
+  /** Its cells, each with a tone of its own, in columns: drawn in place of its picture. */
+  readonly tiles?: readonly (readonly Tile[])[];
+  /** A line about the tiles. */
+  readonly tilesSay?: string;
 }
 
 export type StreamRole = "forward" | "recycle" | "bypass" | "exchange";

@@ -5,13 +5,16 @@ import { meanAges, meanLives } from "../simulate/ages.js";
 import { formatNumber } from "../units/format.js";
 import { inUnit, one, type Unit } from "../units/unit.js";
 import { amount, typeset } from "./scale.js";
-import type { FlowSheet } from "./sheet.js";
+import type { FlowSheet, SheetBody } from "./sheet.js";
+import { type Cells, cellsOf, tilesOf } from "./tiles.js";
 
 /** A quantity that a drawing can show as the tone of its bodies: one number per body, SI. */
 export interface Shown {
   readonly quantity: string;
   readonly values: ReadonlyMap<string, number>;
   readonly unit: Unit;
+  /** Of bodies of several cells, the same cell by cell. */
+  readonly cells?: ReadonlyMap<string, Cells>;
 }
 
 /** What needs no reaction. */
@@ -34,7 +37,12 @@ export function shownOfFlow(plant: Plant, quantity: (typeof quantitiesOfFlow)[nu
   }
   const nodes = quantity === "mean age" ? meanAges(plant) : meanLives(plant);
   const at = quantity === "mean age" ? plant.exit : plant.entry;
-  return { quantity, values: byBody(plant, (name) => nodes[at.get(name) ?? -1] ?? Number.NaN), unit: units.time };
+  return {
+    quantity,
+    values: byBody(plant, (name) => nodes[at.get(name) ?? -1] ?? Number.NaN),
+    unit: units.time,
+    cells: cellsOf(plant, (i) => nodes[i]),
+  };
 }
 
 /**
@@ -54,7 +62,10 @@ export function shownOfSpecies(
     return node === undefined ? Number.NaN : steady.concentrations[node * n + species];
   };
   const name = `${quantity} ${steady.species[species]}`;
-  if (quantity === "concentration of") return { quantity: name, values: byBody(plant, leaving), unit };
+  if (quantity === "concentration of") {
+    const cells = cellsOf(plant, (i) => steady.concentrations[i * n + species]);
+    return { quantity: name, values: byBody(plant, leaving), unit, cells };
+  }
   const made = (body: string): number => {
     let sum = 0;
     for (const s of plant.streams) {
@@ -77,16 +88,25 @@ export function shownOfSpecies(
 /** The temperature that leaves each body, where heat is balanced. */
 export function shownTemperature(plant: Plant, temperatures: Float64Array, unit: Unit): Shown {
   const leaving = (place: string): number => temperatures[plant.exit.get(place) ?? -1] ?? Number.NaN;
-  return { quantity: "temperature", values: byBody(plant, leaving), unit };
+  return {
+    quantity: "temperature",
+    values: byBody(plant, leaving),
+    unit,
+    cells: cellsOf(plant, (i) => temperatures[i]),
+  };
 }
 
 /** The sheet with the quantity as tones and behind the volumes; bodies without a number keep their tint. */
-export function withTones(sheet: FlowSheet, { quantity, values, unit }: Shown): FlowSheet {
-  const shown = sheet.bodies.flatMap((b) => (b.role === "body" && values.has(b.name) ? [values.get(b.name) ?? 0] : []));
+export function withTones(sheet: FlowSheet, { quantity, values, unit, cells }: Shown): FlowSheet {
+  const shown = sheet.bodies.flatMap((b) =>
+    b.role === "body" && values.has(b.name) ? [values.get(b.name) ?? 0, ...(cells?.get(b.name)?.value ?? [])] : [],
+  );
   if (shown.length === 0) return sheet;
-  const low = Math.min(...shown);
-  const high = Math.max(...shown);
+  const low = least(shown);
+  const high = -least(shown.map((v) => -v));
   const words = (v: number): string => wordsOf(v, unit);
+  const even = words(low) === words(high);
+  const toneOf = (v: number): number => (v - low) / (high - low);
   return {
     ...sheet,
     tones: { quantity, low: words(low), high: words(high) },
@@ -94,10 +114,26 @@ export function withTones(sheet: FlowSheet, { quantity, values, unit }: Shown): 
       const value = b.role === "body" ? values.get(b.name) : undefined;
       if (value === undefined) return b;
       const note = b.note ? `${b.note}, ${words(value)}` : words(value);
-      return { ...b, note, tone: high > low ? (value - low) / (high - low) : 0.5 };
+      if (even) return { ...b, note };
+      const own = cells?.get(b.name);
+      return { ...b, note, tone: toneOf(value), ...(own ? tiled(own, toneOf, words) : {}) };
     }),
   };
 }
+
+function tiled(
+  cells: Cells,
+  toneOf: (value: number) => number,
+  words: (value: number) => string,
+): Pick<SheetBody, "tiles" | "tilesSay"> {
+  const tiles = tilesOf(cells, toneOf);
+  if (cells.inRow) return { tiles };
+  const range = `${words(least(cells.value))} to ${words(-least(cells.value.map((v) => -v)))}`;
+  return { tiles, tilesSay: `${cells.value.length} cells of ${range}, the youngest left` };
+}
+
+/** Of any number of values: as many as there are cells would not do as arguments. */
+const least = (values: readonly number[]): number => values.reduce((a, b) => Math.min(a, b), Number.POSITIVE_INFINITY);
 
 function wordsOf(value: number, unit: Unit): string {
   if (unit.offset === 0) return amount(value, unit);

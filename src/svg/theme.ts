@@ -139,6 +139,7 @@ function drawingRules(colour: (name: keyof Palette) => string): readonly Rule[] 
     [[".base .liquid", ".base .ageing"], `fill:${colour("paper")}`],
     [[".toned .liquid", ".toned .ageing"], `fill:${colour("wall")}`],
     [[".tone"], `fill:${colour("wall")}`],
+    [[".rim"], `fill:none;${wall};stroke-width:1.25`],
     [[".ghost"], `fill:${colour("paper")};stroke:${colour("accent")};stroke-width:1.25;stroke-dasharray:3 2.5`],
     [[".still"], `fill:${colour("still")}`],
     [[".hatched"], `fill:url(#bm-hatch);stroke:${colour("hatch")};stroke-width:1;stroke-dasharray:4 2.5`],

@@ -58,6 +58,46 @@ describe("quantities shown as tones", () => {
   });
 });
 
+describe("bodies of many cells", () => {
+  const lattice = networkAt("networks/zoned/lattice.yaml").start;
+
+  test("every cell is a tile of its volume and its own age, the youngest left", () => {
+    const shown = shownOfFlow(lattice, "mean age");
+    const cells = shown.cells!.get("core")!;
+    const sheet = withTones(flowSheet(lattice), shown);
+    const core = sheet.bodies.find((b) => b.name === "core")!;
+    const tiles = core.tiles!.flat();
+    expect(cells.volume.length).toBe(125);
+    expect(tiles.reduce((sum, t) => sum + t.share, 0)).toBeCloseTo(1, 12);
+    // What tiles hold together is what the cells hold: the mean of the tones is that of the ages, on the scale.
+    const volume = cells.volume.reduce((a, b) => a + b, 0);
+    const mean = cells.value.reduce((sum, v, k) => sum + v * cells.volume[k], 0) / volume;
+    const [low, high] = [Math.min(...cells.value), Math.max(...cells.value)];
+    expect(tiles.reduce((sum, t) => sum + t.share * t.tone, 0)).toBeCloseTo((mean - low) / (high - low), 12);
+    const columns = core.tiles!.map((c) => c.reduce((sum, t) => sum + t.tone, 0) / c.length);
+    expect(columns).toEqual([...columns].sort((a, b) => a - b));
+    expect(inWords(sheet)).toContain("125 cells of");
+  });
+
+  test("a row of tanks keeps its order; each is older than the one before", () => {
+    const text =
+      "network: Row\nformat: 1\nfeeds: {in: {flow: 1 L/min, to: row}}\ncompartments:\n  row: {kind: stirred, volume: 4 L, repeat: 4, to: out}\noutlets: [out]\n";
+    const row = parseNetwork(text, { path: "row.yaml", read }).document!.start;
+    const shown = shownOfFlow(row, "mean age");
+    expect(shown.cells!.get("row")!.value.map((v) => v / 60)).toEqual([1, 2, 3, 4].map((v) => expect.closeTo(v, 9)));
+    expect(withTones(flowSheet(row), shown).bodies.find((b) => b.name === "row")!.tiles).toHaveLength(4);
+  });
+
+  test("where all is the same there is no scale", () => {
+    const text =
+      "network: One\nformat: 1\nfeeds: {in: {flow: 1 L/min, to: tank}}\ncompartments:\n  tank: {kind: stirred, volume: 4 L, to: out}\noutlets: [out]\n";
+    const one = parseNetwork(text, { path: "one.yaml", read }).document!.start;
+    const svg = drawNetwork(withTones(flowSheet(one), shownOfFlow(one, "mean age")), { theme: "light" });
+    expect(svg).toContain("mean age 4\u2009min everywhere");
+    expect(svg).not.toContain('class="tone"');
+  });
+});
+
 describe("two networks compared", () => {
   test("a drawing beside itself has not moved", () => {
     const same = compared(sheets.v3, sheets.v3);
