@@ -2,6 +2,8 @@ import { uncarried } from "../compile/carried.js";
 import { compile } from "../compile/compile.js";
 import { parseStudy } from "../parse/study.js";
 import { beside } from "../read/paths.js";
+import { allFigures } from "../report/all-figures.js";
+import type { StudyReport } from "../report/input.js";
 import { writeSummary } from "../report/markdown.js";
 import { writeReport } from "../report/report.js";
 import { reportOf } from "../report/study/build.js";
@@ -43,11 +45,11 @@ export async function study(file: string, options: StudyOptions, { inputs, io }:
   progress.done();
   const status: ExitStatus = result.stopped ? 130 : result.converged ? 0 : 3;
   const files = await inputs.list();
-  const made = reportOf(result, { files, version, command: commandLine(file, options) });
-  const { answer } = made.report;
+  const report = reportOf(result, { files, version, command: commandLine(file, options) });
+  const { answer } = report;
   const json = { ok: status === 0, ...studyJson(result), answer: answer.map((a) => `${a.about}: ${a.says}`) };
   // Half a study must not take the place of a whole report.
-  const path = folder === undefined || result.stopped ? undefined : save(folder, made, io);
+  const path = folder === undefined || result.stopped ? undefined : save(folder, report, io);
   if (folder !== undefined && path !== undefined) {
     const whole = { backmix: version, command: "study", inputs: files, ...json, report: path };
     io.write(beside(`${folder}/`, "result.json"), `${JSON.stringify(whole)}\n`);
@@ -61,8 +63,9 @@ export async function study(file: string, options: StudyOptions, { inputs, io }:
 }
 
 /** Writes the drawings, the summary and, last, the page that shows them all; gives its path. */
-function save(folder: string, { report, figures }: ReturnType<typeof reportOf>, io: Io): string {
-  for (const { name, drawing } of figures) io.write(beside(`${folder}/`, `figures/${name}.svg`), `${drawing}\n`);
+function save(folder: string, report: StudyReport, io: Io): string {
+  for (const { name, drawing } of allFigures(report))
+    io.write(beside(`${folder}/`, `figures/${name}.svg`), `${drawing}\n`);
   io.write(beside(`${folder}/`, "summary.md"), writeSummary(report));
   const page = beside(`${folder}/`, "report.html");
   io.write(page, writeReport(report));

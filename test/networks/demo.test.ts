@@ -27,10 +27,12 @@ describe("the demo study", () => {
     expect(run.summary).toMatch(/^# .*\n\n- \*\*What is wrong\*\*: /);
   });
 
-  test("draws the vessel, both tests, residuals, rivals, profiles, regions, residence times, a tube and a sweep", () => {
+  test("keeps every figure of the page as a drawing of its own", () => {
     const wanted =
-      "vessel fit-1 residuals-1 fit-2 residuals-2 rivals-1 rivals-2 profiles regions exit-age left-and-inside intensity along-1 sweep-1";
+      "vessel fit-1 residuals-1 fit-2 residuals-2 rivals-1 rivals-2 profiles regions exit-age left-and-inside intensity " +
+      "prediction-1 prediction-2 prediction-3 spread-1 spread-2 along-1 change-1 change-2 change-3 sweep-1";
     expect(run.figures).toEqual(wanted.split(" "));
+    expect([...run.page.matchAll(/<figure [^>]*data-name="([^"]+)"/g)].map((m) => m[1])).toEqual(run.figures);
   });
 
   test("its intervals hold the values that the logs were made with", () => {

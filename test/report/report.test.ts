@@ -1,4 +1,5 @@
 import { describe, expect, test } from "vitest";
+import { allFigures } from "../../src/report/all-figures.js";
 import { cautionsFor } from "../../src/report/cautions.js";
 import type { StudyReport } from "../../src/report/input.js";
 import { writeSummary } from "../../src/report/markdown.js";
@@ -56,6 +57,13 @@ describe("the report page", () => {
     const drawings = [...page.matchAll(/<figure[^>]*>(.*?)<\/figure>/gs)].map((m) => m[1]);
     expect(drawings.length).toBeGreaterThanOrEqual(5);
     for (const d of drawings) expect(d).toMatch(/role="img"><title>[^<]+<\/title><desc>[^<]+<\/desc>.*<figcaption>/s);
+  });
+
+  test("shows the figures that are kept beside it, each once and in the same order", () => {
+    const names = allFigures(demo).map((f) => f.name);
+    expect([...page.matchAll(/<figure [^>]*data-name="([^"]+)"/g)].map((m) => m[1])).toEqual(names);
+    expect(names).toEqual(expect.arrayContaining(["prediction-1", "change-1", "spread-1"]));
+    expect(new Set(names).size).toBe(names.length);
   });
 
   test("says every number's unit and interval, and what cannot be told", () => {
