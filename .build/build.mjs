@@ -1,9 +1,10 @@
 // Builds everything that is not committed: validators, the bundled command line, the library and its types.
 import { execFile } from "node:child_process";
-import { chmodSync, existsSync, readFileSync, rmSync } from "node:fs";
+import { existsSync, readFileSync, rmSync } from "node:fs";
 import { join } from "node:path";
 import { promisify } from "node:util";
 import { build } from "esbuild";
+import { buildProgram, keepCompiled } from "./program.mjs";
 import { root, writeManual, writeSchemas } from "./schemas.mjs";
 
 const { version } = JSON.parse(readFileSync(join(root, "package.json"), "utf8"));
@@ -29,9 +30,13 @@ async function bundle(entry, name, options = {}) {
   });
 }
 
-/** Packages written as CommonJS look for `require`, which an ES module lacks. */
-const requireBanner =
-  'import { createRequire as makeRequire } from "node:module"; const require = makeRequire(import.meta.url);';
+/** What the code that is kept compiled is made of: the short commands, and the fit with its refits. */
+const tank = "test/fit/p1/p1";
+const commands = [
+  ["check", `${tank}.yaml`],
+  ["fit", `${tank}.yaml`, "--trial", `${tank}-pulse.yaml`, "--bootstrap", "20", "--jobs", "1"],
+  ["fit", `${tank}.yaml`, "--trial", `${tank}-pulse.yaml`, "--json"],
+];
 
 async function types() {
   if (!existsSync(join(root, "src/index.ts"))) return;
@@ -48,11 +53,7 @@ try {
   await writeManual();
   rmSync(dist, { recursive: true, force: true });
   await Promise.all([
-    // The shebang comes from the entry file itself, so that only it carries one, not the chunks.
-    bundle("src/cli/main.ts", "backmix", {
-      entryPoints: { backmix: "src/cli/main.ts", "refit-worker": "src/cli/refit-worker.ts" },
-      banner: { js: requireBanner },
-    }),
+    buildProgram(root, dist, version).then(() => keepCompiled(root, dist, commands)),
     bundle("src/index.ts", "index", { packages: "external" }),
     types(),
   ]);
@@ -61,4 +62,3 @@ try {
   if (!e.errors) throw e;
   process.exit(1);
 }
-if (existsSync(join(dist, "backmix.js"))) chmodSync(join(dist, "backmix.js"), 0o755);

@@ -17,8 +17,9 @@ const maxYoungGenerationSizeMb = 64;
 /**
  * Runs a command line in a thread of its own. The first interrupt asks it to come to an end and print what it has; a
  * second one ends it at once.
+ * @param script  the file that the thread starts from
  */
-export function runAlone(args: readonly string[], script: URL): Promise<ExitStatus> {
+export function runAlone(args: readonly string[], script: string): Promise<ExitStatus> {
   const flag = new Int32Array(new SharedArrayBuffer(4));
   const data: WorkerData = { args, cwd: process.cwd(), flag, ...terminal() };
   const worker = new Worker(script, { workerData: data, resourceLimits: { maxYoungGenerationSizeMb } });

@@ -1,9 +1,8 @@
-import { existsSync } from "node:fs";
 import { availableParallelism } from "node:os";
-import { fileURLToPath } from "node:url";
 import { Worker } from "node:worker_threads";
 import type { Refits } from "../fit/resample.js";
 import { type RefitJob, type RefitRows, type RefitSpan, rowsOf } from "./refit-job.js";
+import { threadFile } from "./thread-file.js";
 
 /** Refits that are worth a thread of their own, and that are asked of one at a time. */
 const worthAThread = 30;
@@ -34,7 +33,7 @@ export async function runRefits(
 ): Promise<void> {
   const spans = spansOf(wanted);
   const most = Math.min(threads ?? availableParallelism(), Math.ceil(wanted.length / worthAThread));
-  const file = workerFile();
+  const file = threadFile("refit-worker");
   const others = file ? Math.max(0, most - 1) : 0;
   await Promise.all([
     ...Array.from({ length: others }, () => oneThread(file as string, job, spans, listener)),
@@ -90,11 +89,4 @@ function spansOf(wanted: readonly number[]): RefitSpan[] {
     else spans.push({ from: r, to: r + 1 });
   }
   return spans;
-}
-
-/** The bundled file of the thread, beside this one or above its folder; none where the sources run by themselves. */
-function workerFile(): string | undefined {
-  return ["./refit-worker.js", "../refit-worker.js"]
-    .map((path) => fileURLToPath(new URL(path, import.meta.url)))
-    .find((path) => existsSync(path));
 }

@@ -2,8 +2,8 @@ import { type ChildProcess, spawn } from "node:child_process";
 import { mkdirSync, mkdtempSync, readdirSync, readFileSync, rmSync, writeFileSync } from "node:fs";
 import { tmpdir } from "node:os";
 import { join } from "node:path";
-import { build } from "esbuild";
 import { afterAll, beforeAll, describe, expect, test } from "vitest";
+import { buildProgram, keepCompiled } from "../../.build/program.mjs";
 import { files } from "./vessels.js";
 
 // The program as it is shipped: one bundle, a process of its own.
@@ -11,18 +11,7 @@ const folder = mkdtempSync(join(tmpdir(), "backmix-"));
 const script = join(folder, "dist", "backmix.js");
 
 beforeAll(async () => {
-  await build({
-    entryPoints: { backmix: "src/cli/main.ts", "refit-worker": "src/cli/refit-worker.ts" },
-    outdir: join(folder, "dist"),
-    bundle: true,
-    splitting: true,
-    format: "esm",
-    platform: "node",
-    target: "node20",
-    define: { BACKMIX_VERSION: '"9.8.7"' },
-    banner: { js: 'import { createRequire } from "node:module"; const require = createRequire(import.meta.url);' },
-    logLevel: "error",
-  });
+  await buildProgram(process.cwd(), join(folder, "dist"), "9.8.7");
   writeFileSync(join(folder, "package.json"), '{"type": "module"}');
   for (const [name, text] of Object.entries(files)) writeFileSync(join(folder, name), text);
 });
@@ -63,6 +52,18 @@ describe("the program as a process", () => {
 
   test("gives its version", async () => {
     expect(await ended(start(["--version"]))).toEqual({ status: 0, out: "9.8.7\n", err: "" });
+  });
+
+  test("says the same by code that was compiled before, and where what lies there is no code", async () => {
+    const dist = join(folder, "dist");
+    const first = await ended(start(["check", "tank.yaml"]));
+    await keepCompiled(process.cwd(), dist, [["check", join(folder, "tank.yaml")]]);
+    const kept = readdirSync(join(dist, "chunks")).filter((name) => name.endsWith(".code"));
+    expect(kept.length).toBeGreaterThan(5);
+    expect(await ended(start(["check", "tank.yaml"]))).toEqual(first);
+    for (const name of kept) writeFileSync(join(dist, "chunks", name), "no code");
+    expect(await ended(start(["check", "tank.yaml"]))).toEqual(first);
+    for (const name of kept) rmSync(join(dist, "chunks", name));
   });
 
   test("exits with the status of the command", async () => {
