@@ -210,7 +210,9 @@ function streamsOf(network: Network, env: Float64Array, flows: Flows): PlantStre
     const [from, to] = [names[s.from], names[s.to]];
     const leaves = port(from, s.stream.leaves, "outlets");
     const enters = port(to, s.stream.enters, "inlets");
-    return { from, to, leaves, enters, flow: s.flow, role: back[k] ? "recycle" : "forward", written };
+    const role = back[k] ? "recycle" : "forward";
+    const share = split.is === "share" ? { share: split.value.of(env) } : {};
+    return { from, to, leaves, enters, flow: s.flow, role, written, ...share };
   });
   const exchanges = network.compartments.flatMap((c) =>
     c.exchanges.map((e): PlantStream => {

@@ -76,6 +76,8 @@ export interface PlantStream {
   readonly role: "forward" | "recycle" | "exchange";
   /** As the file says it: "30 %", "rest". */
   readonly written: string;
+  /** Of all that leaves there (0 to 1), where the file divides it by a share. */
+  readonly share?: number;
 }
 
 /** Values to use in place of the file's, SI, by name (`bypass`, `feed.flow`). */

@@ -45,7 +45,9 @@ export function bodyWords(body: SheetBody, sheet: FlowSheet, scale: Scale): read
   if (body.volume > 0 && body.volume * scale.area < 0.98 * 64) parts.push("drawn larger");
   if (body.note) parts.push(body.note);
   const second: readonly Words[] =
-    parts.length === 0 ? [] : [{ words: parts.join(", "), style: body.accent ? "look" : "quiet" }];
+    parts.length === 0
+      ? []
+      : [{ words: parts.join(", "), style: body.accent ? "look" : "quiet", underlined: body.fitted }];
   return [name, ...second, ...(body.tilesSay ? [{ words: body.tilesSay, style: "quiet" as const }] : [])];
 }
 
@@ -121,6 +123,13 @@ export function junctionBlock(body: SheetBody, widest: number, stack: number): B
   };
 }
 
+/** A stream's label in its style. */
+export const labelWords = ({ label, accent, fitted }: SheetStream): Words => ({
+  words: label,
+  style: accent ? "look" : "plain",
+  underlined: fitted,
+});
+
 interface Row {
   readonly width: number;
   readonly height: number;
@@ -162,10 +171,7 @@ function hangingRow(
     const y = edge + arcRoom;
     row.bodies.push({ body, box: { x: x - size.width / 2, y, ...size } });
     row.arcs.push({ stream, x, top: edge, bottom: y });
-    row.captions.push(
-      caption([{ words: stream.label, style: stream.accent ? "look" : "plain" }], x + 13, edge + arcRoom / 2 - 7),
-      moved(name2, x, y),
-    );
+    row.captions.push(caption([labelWords(stream)], x + 13, edge + arcRoom / 2 - 7), moved(name2, x, y));
     // what hangs further down was measured from this body's own top
     row.bodies.push(...lower.bodies.map((p) => ({ ...p, box: { ...p.box, x: p.box.x + x, y: p.box.y + y } })));
     row.captions.push(...lower.captions.map((c) => moved(c, x, y)));

@@ -6,6 +6,7 @@ import type { Box, Svg } from "../svg/svg.js";
 export interface Words {
   readonly words: string;
   readonly style: "name" | "plain" | "quiet" | "look" | "title";
+  readonly underlined?: boolean | undefined;
 }
 
 /** Words with a place. `box` is what they cover. */
@@ -41,7 +42,8 @@ export function drawCaption({ lines, box, anchor }: Caption): Svg {
     .map((l) => {
       const height = l.style === "title" ? 20 : lineHeight;
       y += height;
-      return text(x, y - height * 0.25, l.words, l.style, anchor === "start" ? undefined : anchor);
+      const style = l.underlined ? `${l.style} fitted` : l.style;
+      return text(x, y - height * 0.25, l.words, style, anchor === "start" ? undefined : anchor);
     })
     .join("");
 }

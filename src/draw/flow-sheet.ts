@@ -1,9 +1,9 @@
 import { kindValues } from "../compile/evaluate.js";
-import type { Plant, PlantStream } from "../compile/plant.js";
+import type { Plant } from "../compile/plant.js";
 import { partingsOf } from "../compile/sends.js";
 import type { Compartment } from "../model/network.js";
 import { dimensions } from "../units/dimension.js";
-import { pastPorts } from "./part-ports.js";
+import { pastPlaces, type ShownStream } from "./past-places.js";
 import { skipsBodies } from "./routes.js";
 import { amount, typeset } from "./scale.js";
 import type { BodyRole, FlowSheet, SheetBody, SheetGroup, SheetStream, SheetUnit } from "./sheet.js";
@@ -12,7 +12,7 @@ import type { BodyRole, FlowSheet, SheetBody, SheetGroup, SheetStream, SheetUnit
 export interface SheetOptions {
   readonly injections?: readonly string[];
   readonly probes?: readonly string[];
-  /** A few words behind a body's volume, by name: an interval, a finding. */
+  /** A few words behind a body's volume, by name, or a stream's flow (`feed>product`): what a fit leaves possible. */
   readonly notes?: ReadonlyMap<string, string>;
   /** Bodies and streams (`feed>product`) that the reader should look at. */
   readonly accents?: ReadonlySet<string>;
@@ -23,7 +23,7 @@ export function flowSheet(plant: Plant, wanted: SheetOptions = {}): FlowSheet {
   const { network } = plant;
   const options = atPorts(plant, wanted);
   const marked = new Set([...(options.injections ?? []), ...(options.probes ?? []), ...(options.notes?.keys() ?? [])]);
-  const { streams, passed } = pastPorts(plant, marked);
+  const { streams, passed } = pastPlaces(plant, marked);
   const units = { volume: network.units.unitFor(dimensions.volume), flow: network.units.unitFor(dimensions.flow) };
   const sent = taken(plant);
   const named = (name: string, role: BodyRole): SheetBody => withOptions({ name, volume: 0, role }, options);
@@ -74,16 +74,16 @@ function withOptions(body: SheetBody, { injections, probes, notes, accents }: Sh
   return {
     ...body,
     ...(marks.length > 0 ? { marks } : {}),
-    ...(note === undefined ? {} : { note }),
+    ...(note === undefined ? {} : { note, fitted: true }),
     ...(accents?.has(body.name) ? { accent: true } : {}),
   };
 }
 
 function streamsOf(
-  streams: readonly PlantStream[],
+  streams: readonly ShownStream[],
   bodies: readonly SheetBody[],
   unit: SheetUnit,
-  { accents }: SheetOptions,
+  { accents, notes }: SheetOptions,
   sent: ReadonlyMap<string, string>,
 ): readonly SheetStream[] {
   const role = new Map(bodies.map((b) => [b.name, b.role]));
@@ -95,28 +95,32 @@ function streamsOf(
       (role.get(s.from) === "feed" && streams.filter((o) => o.from === s.from).length === 1) ||
       (role.get(s.to) === "outlet" && streams.filter((o) => o.to === s.to).length === 1 && plain(s));
     const partly = soleInto(role.get(s.to) === "outlet" ? s.to : undefined, streams) ? undefined : sent.get(way(s));
-    const words = [alone ? toMember(s).trim() : label(s, unit) + toMember(s), partly ?? ""];
+    const legs = [s.from, ...(s.past ?? []), s.to];
+    const ways = legs.slice(1).map((to, k) => `${legs[k]}>${to}`);
+    const note = ways.map((w) => notes?.get(w)).find((words) => words !== undefined);
+    const words = [alone ? toMember(s).trim() : label(s, unit, note) + toMember(s), partly ?? ""];
     return {
       from: s.from,
       to: s.to,
       flow: s.flow,
       role: bypass ? "bypass" : s.role,
       label: words.filter((w) => w !== "").join("; "),
-      ...(accents?.has(`${s.from}>${s.to}`) ? { accent: true } : {}),
+      ...(note === undefined ? {} : { fitted: true }),
+      ...(ways.some((w) => accents?.has(w)) ? { accent: true } : {}),
     };
   });
 }
 
-const way = (s: PlantStream): string => `${s.from}>${s.enters}`;
+const way = (s: ShownStream): string => `${s.from}>${s.enters}`;
 
 /** The only stream that enters a terminal. */
-function soleInto(terminal: string | undefined, streams: readonly PlantStream[]): PlantStream | undefined {
+function soleInto(terminal: string | undefined, streams: readonly ShownStream[]): ShownStream | undefined {
   const into = streams.filter((s) => s.to === terminal);
   return into.length === 1 ? into[0] : undefined;
 }
 
 /** An outlet says itself what its only stream takes of a substance. */
-function withTaken(body: SheetBody, streams: readonly PlantStream[], sent: ReadonlyMap<string, string>): SheetBody {
+function withTaken(body: SheetBody, streams: readonly ShownStream[], sent: ReadonlyMap<string, string>): SheetBody {
   const only = soleInto(body.name, streams);
   const words = only && sent.get(way(only));
   if (words === undefined) return body;
@@ -134,17 +138,29 @@ function taken(plant: Plant): ReadonlyMap<string, string> {
   return words;
 }
 
-/** "1 L/min (10 %)": the flow, and a share or name as the file writes it. */
-function label(s: PlantStream, unit: SheetUnit): string {
+/** "1 L/min (bypass 10 %, 9 to 11)": the flow, what the file writes for it and the share that this makes, and a note. */
+function label(s: ShownStream, unit: SheetUnit, note: string | undefined): string {
   const flow = amount(s.flow, unit);
+  const inside = [writtenAs(s, flow), ...(note === undefined ? [] : [note])].filter((words) => words !== "");
+  const through = s.through ? ` by ${s.through.join(", ")}` : "";
+  return (inside.length === 0 ? flow : `${flow} (${inside.join(", ")})`) + through;
+}
+
+/** A share in the file's spelling, with its value where that is a name or an expression: "30 %", "bypass 10 %". */
+function writtenAs(s: ShownStream, flow: string): string {
   const written = typeset(s.written.trim());
-  return plain(s) || written === flow || written.length > 24 ? flow : `${flow} (${written})`;
+  if (plain(s) || written === flow) return "";
+  const short = written.length > 24 ? "" : written;
+  if (s.share === undefined || /^[\d.,]+\s*%$/.test(written)) return short;
+  const share = amount(s.share, { name: "%", factor: 0.01 });
+  if (short === "") return share;
+  return /^[\w.-]+$/.test(short) && !/^[\d.]+$/.test(short) ? `${short} ${share}` : `${short} = ${share}`;
 }
 
 /** Which of a row of bodies it goes to, or which inlet it takes, where that is not the first or only one. */
-const toMember = ({ to, enters }: PlantStream): string => (enters === to ? "" : ` to ${enters}`);
+const toMember = ({ to, enters }: ShownStream): string => (enters === to ? "" : ` to ${enters}`);
 
-const plain = (s: PlantStream): boolean => s.written === "all" || s.written === "rest";
+const plain = (s: ShownStream): boolean => s.written === "all" || s.written === "rest";
 
 /** "vessel 1000 L, of which 120 L out of reach; feed 10 L/min; mean time 100 min" */
 function vesselLine(plant: Plant, units: { readonly volume: SheetUnit; readonly flow: SheetUnit }): string {

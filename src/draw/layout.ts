@@ -1,6 +1,6 @@
 import { samples } from "../svg/spine.js";
 import type { Box } from "../svg/svg.js";
-import type { Arcs, Placed } from "./blocks.js";
+import { type Arcs, labelWords, type Placed } from "./blocks.js";
 import { clipTo, union } from "./boxes.js";
 import type { Caption } from "./caption.js";
 import { Clutter } from "./clutter.js";
@@ -119,7 +119,7 @@ function wishesOf(ribbons: readonly Ribbon[]): readonly LabelWish[] {
   return ribbons
     .filter((r) => r.trip.stream.label !== "")
     .map((r) => ({
-      words: { words: r.trip.stream.label, style: r.trip.stream.accent ? "look" : "plain" },
+      words: labelWords(r.trip.stream),
       spine: r.spine,
       width: r.trip.width,
       onLane: r.via === "over" || r.via === "under",

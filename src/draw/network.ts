@@ -42,7 +42,15 @@ export function drawNetwork(sheet: FlowSheet, options: PictureOptions = {}): Svg
 }
 
 /** The kind's picture; with a tone, the same once in the paper's colour, since streams end under it, and once in the tone. */
-function drawBody({ body, box }: Layout["bodies"][number]): Svg {
+function drawBody(placed: Layout["bodies"][number]): Svg {
+  const { box } = placed;
+  if (!placed.body.accent || placed.body.volume === 0) return pictureOf(placed);
+  // a second outline: the accent's hue is the others' tone in a grey print
+  const around = { x: box.x - 3.5, y: box.y - 3.5, width: box.width + 7, height: box.height + 7 };
+  return pictureOf(placed) + rectangle(around, "look-here", Math.min(12, around.height / 4));
+}
+
+function pictureOf({ body, box }: Layout["bodies"][number]): Svg {
   if (body.tiles) return mosaicBody(box, body.tiles, toneStrength);
   const own = body.picture?.(box) ?? rectangle(box, "terminal");
   if (body.tone === undefined) return own;
@@ -97,7 +105,10 @@ function drawRibbon(ribbon: Ribbon): Svg {
   // what runs back is pale, with a rim: still a line where it is thin
   const rim = back && !trip.stream.gone ? path(d, `ribbon${accent}`, { "stroke-width": trip.width }) : "";
   const width = back ? Math.max(0, trip.width - 2) : trip.width;
-  return [halo, rim, width > 0 ? path(d, kind, { "stroke-width": width }) : "", ...heads].join("");
+  // dark edges: the accent's hue is the others' tone in a grey print
+  const edge =
+    trip.stream.accent && !trip.stream.gone ? path(d, "ribbon edge", { "stroke-width": trip.width + 2 }) : "";
+  return [halo, edge, rim, width > 0 ? path(d, kind, { "stroke-width": width }) : "", ...heads].join("");
 }
 
 /** The ribbon's way, drawn on under the bodies at both ends. */

@@ -46,6 +46,8 @@ export interface SheetBody {
   readonly marks?: readonly ("injection" | "probe")[];
   /** Should the reader look here? */
   readonly accent?: boolean;
+  /** Did a fit move it? Then `note` is its interval. */
+  readonly fitted?: boolean;
   /** How many bodies it stands for, where it is drawn for several. */
   readonly stands?: number;
   /** How strong its tone is, 0 to 1, in place of the kind's own tint. */
@@ -67,6 +69,8 @@ export interface SheetStream {
   /** As it shall be read: "1 L/min (10 %)". */
   readonly label: string;
   readonly accent?: boolean;
+  /** Did a fit move it? */
+  readonly fitted?: boolean;
   /** No longer there, in a comparison. */
   readonly gone?: boolean;
 }

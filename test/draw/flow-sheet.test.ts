@@ -34,7 +34,7 @@ describe("a flow sheet says what the file says", () => {
     const said = sheet.streams.map((s) => [`${s.from}>${s.to}`, `${s.role}, ${s.label.replaceAll("\u2009", " ")}`]);
     expect(Object.fromEntries(said)).toEqual({
       "feed>inlet-leg": "forward, 9 L/min",
-      "feed>product": "bypass, 1 L/min (bypass)",
+      "feed>product": "bypass, 1 L/min (bypass 10 %)",
       "bulk>product": "forward, 9 L/min",
       "inlet-leg>bulk": "forward, 12.9 L/min",
       "bulk>inlet-leg": "recycle, 3.86 L/min (30 %)",

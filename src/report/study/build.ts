@@ -8,7 +8,7 @@ import { changeRows, severalSurvive } from "./change-rows.js";
 import { dataQuality, findingsOf } from "./data.js";
 import { decisionWords } from "./decision-words.js";
 import { parameterEstimate } from "./estimate.js";
-import { curveFigures, rivalFigures, vesselFigure } from "./figures.js";
+import { curveFigures, rivalFigures } from "./figures.js";
 import { furtherWords } from "./further-words.js";
 import { assumptionsOf, cautionsOf } from "./grounds.js";
 import { identifiabilityOf } from "./identifiability.js";
@@ -20,6 +20,7 @@ import { residenceFigures } from "./residence-figures.js";
 import { equalsOf, rivalRows } from "./rival-rows.js";
 import { studyStatesWords } from "./states-words.js";
 import { testedFlows } from "./tested.js";
+import { vesselFigure } from "./vessel-figure.js";
 
 /** The report of a study. */
 export function reportOf(result: StudyResult, provenance: Omit<Provenance, "seed">): StudyReport {

@@ -36,7 +36,8 @@ export function differenceEstimate(
 export const parameterEstimate = (p: FittedParameter): Estimate =>
   estimate(p.value, p.interval95 ?? [Number.NaN, Number.NaN], p.unit);
 
-const percent = ((): Unit => {
+/** As people read shares. */
+export const percent = ((): Unit => {
   const unit = parseUnit("%");
   if (!("factor" in unit)) throw new Error("no unit %");
   return unit;

@@ -1,58 +1,11 @@
-import { aggregated, outermost } from "../../draw/aggregate.js";
 import { plotCurves } from "../../draw/curves.js";
 import { plotFit } from "../../draw/fit-curve.js";
-import { flowSheet } from "../../draw/flow-sheet.js";
-import { drawNetwork } from "../../draw/network.js";
-import { sheetTable } from "../../draw/sheet-table.js";
 import type { FittedReading } from "../../fit/result.js";
 import { readingLabel, type Trial } from "../../model/trial.js";
 import type { Ranked, StudyResult } from "../../study/result.js";
-import { holdUp } from "../../units/basis.js";
-import { dimensions } from "../../units/dimension.js";
-import { formatNumber } from "../../units/format.js";
 import { differenceInUnit, inUnit, type Unit } from "../../units/unit.js";
-import { estimateWords } from "../digits.js";
-import type { Estimate, Figure } from "../input.js";
-import { estimate } from "./estimate.js";
-import { intervalOf } from "./interval-of.js";
+import type { Figure } from "../input.js";
 import { residualFigure } from "./residual-figure.js";
-import { traitsOf } from "./traits.js";
-
-/** The vessel as fitted: what the reader should look at is marked, what the fit moved bears its interval. */
-export function vesselFigure(ranked: Ranked, trials: readonly Trial[]): Figure | undefined {
-  const { plant, fit, rival } = ranked;
-  if (!plant || !fit) return undefined;
-  const units = plant.network.units.unitFor(dimensions.volume);
-  const notes = new Map(
-    plant.network.compartments.flatMap((c) => {
-      const volume = c.values.volume;
-      const known = volume && intervalOf(volume, plant, fit);
-      const words = known && volumeInterval(estimate(volume.of(plant.env), known, units));
-      return words ? [[c.name, words] as const] : [];
-    }),
-  );
-  const sheet = flowSheet(plant, {
-    injections: trials.flatMap((t) => t.injections.map((i) => i.at)),
-    probes: trials.flatMap((t) => t.readings.map((r) => r.at)),
-    notes,
-    accents: new Set(traitsOf(plant, fit).map((t) => t.place)),
-  });
-  return {
-    name: "vessel",
-    drawing: drawNetwork(aggregated(sheet, outermost(plant.network)), { untitled: true }),
-    data: { table: sheetTable(sheet) },
-    caption: `The vessel as fitted by '${rival.network.title}', at the flow of the file. Area is ${holdUp(plant.network.basis)}, width is flow; behind a ${holdUp(plant.network.basis)} what the fit leaves possible (95 %).`,
-  };
-}
-
-/** An interval with as many digits as the volume before it is drawn with, where they tell its ends apart. */
-function volumeInterval(of: Estimate): string {
-  const { interval } = estimateWords(of);
-  if (interval === "" || of.low === undefined || of.high === undefined || !Number.isFinite(of.high - of.low))
-    return interval;
-  const [low, high] = [formatNumber(of.low, 3), formatNumber(of.high, 3)];
-  return low === high ? interval : `${low} to ${high}`;
-}
 
 /** Measured against fitted of the best rival, and what is left between them, for every trial. */
 export function curveFigures(result: StudyResult): Figure[] {

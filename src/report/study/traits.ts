@@ -4,10 +4,8 @@ import type { Fit } from "../../fit/result.js";
 import { type Compartment, type Feed, isClosed, type Stream } from "../../model/network.js";
 import { holdUp } from "../../units/basis.js";
 import { dimensions } from "../../units/dimension.js";
-import { parseUnit } from "../../units/parse.js";
-import { one, type Unit } from "../../units/unit.js";
 import { estimateLine } from "../digits.js";
-import { estimate } from "./estimate.js";
+import { estimate, percent } from "./estimate.js";
 import { intervalOf } from "./interval-of.js";
 
 /** Something that a fitted network says is wrong with its vessel. */
@@ -130,8 +128,3 @@ function stillWater(c: Compartment, plant: Plant, fit: Fit): Trait[] {
 }
 
 const percentOf = (share: number): string => `${(100 * share).toPrecision(2).replace(/\.0$/, "")} %`;
-
-const percent = ((): Unit => {
-  const unit = parseUnit("%");
-  return "factor" in unit ? unit : one;
-})();
