@@ -42,12 +42,10 @@ export function drawNetwork(sheet: FlowSheet, options: PictureOptions = {}): Svg
 }
 
 /** The kind's picture; with a tone, the same once in the paper's colour, since streams end under it, and once in the tone. */
+/** A heavy outline where the reader should look: the accent's hue is the others' tone in a grey print. */
 function drawBody(placed: Layout["bodies"][number]): Svg {
-  const { box } = placed;
-  if (!placed.body.accent || placed.body.volume === 0) return pictureOf(placed);
-  // a second outline: the accent's hue is the others' tone in a grey print
-  const around = { x: box.x - 3.5, y: box.y - 3.5, width: box.width + 7, height: box.height + 7 };
-  return pictureOf(placed) + rectangle(around, "look-here", Math.min(12, around.height / 4));
+  const { accent, volume } = placed.body;
+  return accent && volume > 0 ? group("look-here", [pictureOf(placed)]) : pictureOf(placed);
 }
 
 function pictureOf({ body, box }: Layout["bodies"][number]): Svg {

@@ -155,7 +155,10 @@ function drawingRules(colour: (name: keyof Palette) => string): readonly Rule[] 
     [[".ribbon.back.accent"], `stroke:${colour("accentSoft")}`],
     [[".ribbon.gone"], `stroke:${colour("accentSoft")};stroke-dasharray:7 4`],
     [[".ribbon.edge"], `stroke:${colour("ink")}`],
-    [[".look-here"], `fill:none;stroke:${colour("accent")};stroke-width:2.5`],
+    [
+      [".look-here .liquid", ".look-here .ageing", ".look-here .hatched", ".look-here .rim", ".look-here .ghost"],
+      `stroke:${colour("accent")};stroke-width:3`,
+    ],
     [[".halo"], `fill:none;stroke:${colour("paper")}`],
     [[".chevron"], `fill:none;${wall};stroke-width:1.25;stroke-linejoin:round;stroke-linecap:round`],
     [[".chevron.accent"], `stroke:${colour("accent")}`],

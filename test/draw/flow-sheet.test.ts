@@ -61,3 +61,24 @@ test("what a substance does otherwise than the liquid stands on the stream, or a
   const back = streams.find((s) => s.from === "settler" && s.to === "tank")?.label.replaceAll("\u2009", " ");
   expect(back).toBe("5 m³/h; solids 86 %");
 });
+
+test("a junction that one stream enters and one leaves is no stop: the stream runs on, its label names both share and junction", () => {
+  const by = (split: string, junction: string) =>
+    parseNetwork(
+      `network: Two tanks\nformat: 1\nparameters: {slip: {value: 10 %, between: [0 %, 60 %]}}\nfeeds: {raw: {flow: 12 L/min, to: {${split}, a: rest}}}\ncompartments:\n${junction}  a: {kind: stirred, volume: 3 L, to: b}\n  b: {kind: stirred, volume: 4 L, to: out}\noutlets: [out]\n`,
+      { path: "two.yaml", read: () => undefined },
+    ).document!;
+  const through = by("tee: slip", "  tee: {kind: junction, to: out}\n");
+  const options = { notes: new Map([["raw>tee", "9 to 11 %"]]), accents: new Set(["tee>out"]) };
+  const sheet = flowSheet(compile(through).plant!, options);
+  expect(sheet.bodies.map((b) => b.name)).toEqual(["raw", "a", "b", "out"]);
+  const past = sheet.streams.find((s) => s.from === "raw" && s.to === "out")!;
+  expect(past).toMatchObject({ role: "bypass", accent: true, fitted: true });
+  expect(past.label.replaceAll("\u2009", " ")).toBe("1.2 L/min (slip 10 %, 9 to 11 %) by tee");
+  // Drawn as a bypass that is written without one.
+  const direct = flowSheet(compile(by("out: slip", "")).plant!);
+  const ways = (s: FlowSheet) => s.streams.map(({ from, to, flow, role }) => [from, to, flow, role]);
+  expect(ways(sheet).sort()).toEqual(ways(direct).sort());
+  // A junction that tracer is put in or watched at stays.
+  expect(flowSheet(compile(through).plant!, { probes: ["tee"] }).bodies.map((b) => b.name)).toContain("tee");
+});
