@@ -2,12 +2,13 @@ import { checkDuty } from "../check/duty.js";
 import type { Network } from "../model/network.js";
 import { parseDuty } from "../parse/duty.js";
 import { collector } from "../problems/report.js";
-import { type BranchPoint, branchesAlong, nextTurns } from "../reaction/branches.js";
+import { type BranchPoint, nextTurns } from "../reaction/branches.js";
 import { figuresOf } from "../reaction/figures.js";
 import { steadyState } from "../reaction/steady.js";
 import { type BranchPlot, plotBranches } from "../report/study/branch-figure.js";
-import { inputsOf, rowWith } from "../study/inputs.js";
+import { inputsOf } from "../study/inputs.js";
 import { noRow, type Operation, plantOf } from "../study/operate.js";
+import { statesAlong, steadyLines } from "../study/states-along.js";
 import { inUnit } from "../units/unit.js";
 import type { Context } from "./context.js";
 import { columnsCsv } from "./csv.js";
@@ -43,20 +44,14 @@ export async function simulateStates(
   const operation: Operation = { network, duty, values: set, kinetics: new Map() };
   const input = inputNamed(over.slice(0, equals).trim(), inputsOf(operation), "--states");
   const { from, to, unit } = rangeFrom(over.slice(equals + 1).trim(), input, option);
-  const lines = duty.report.filter((line) => line.what !== "tracer-time" && line.what !== "time-beyond");
-  const reporting = { ...duty, report: lines };
-  if (lines.length === 0)
+  const reporting = { ...duty, report: steadyLines(duty) };
+  if (reporting.report.length === 0)
     throw new UsageError(`the duty '${duty.title}' reports nothing to follow: list figures under \`report:\``);
-  const rowAt = (value: number) => rowWith({ ...noRow, vessel: set }, [input], [value]);
-  const present = plantOf(operation, { ...noRow, vessel: set }).plant ?? plantAt(network, set);
+  const row = { ...noRow, vessel: set };
+  const present = plantOf(operation, row).plant ?? plantAt(network, set);
   const progress = progressOn(io);
   progress.say(`simulate: following steady states over ${input.name}`);
-  const found = branchesAlong(reporting, {
-    from,
-    to,
-    plantAt: (value) => (input.of === "duty" ? present : plantOf(operation, rowAt(value)).plant),
-    settingsAt: (value) => rowAt(value).duty,
-  });
+  const found = statesAlong(operation, input, [from, to], row);
   progress.done();
   const now = steadyState(present, duty.chemistry, reporting);
   const next = nextTurns(found, input.value, now);

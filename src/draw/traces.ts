@@ -62,19 +62,25 @@ export function points(
   return { svg: d === "" ? "" : path(d, dense ? `${className} dense` : className), hidden };
 }
 
-/** The area between two lines over the same x. */
+/** The area between two lines over the same x; breaks where either is no number. */
 export function area(x: ArrayLike<number>, low: ArrayLike<number>, high: ArrayLike<number>, ax: Axis, ay: Axis): Svg {
-  const up: string[] = [];
-  const down: string[] = [];
-  let last = Number.NEGATIVE_INFINITY;
+  const pieces: { readonly up: string[]; readonly down: string[] }[] = [];
+  let last: number | undefined;
   for (let k = 0; k < x.length; k++) {
+    if (!Number.isFinite(low[k]) || !Number.isFinite(high[k])) {
+      last = undefined;
+      continue;
+    }
     const at = ax.at(x[k]);
-    if (!Number.isFinite(low[k]) || !Number.isFinite(high[k]) || at - last < 0.3) continue;
+    if (last === undefined) pieces.push({ up: [], down: [] });
+    else if (at - last < 0.3) continue;
+    const { up, down } = pieces[pieces.length - 1];
     up.push(`${px(at)} ${px(ay.at(high[k]))}`);
     down.push(`${px(at)} ${px(ay.at(low[k]))}`);
     last = at;
   }
-  return up.length === 0 ? "" : path(`M${[...up, ...down.reverse()].join("L")}Z`, "area");
+  const d = pieces.map(({ up, down }) => `M${[...up, ...down.reverse()].join("L")}Z`).join("");
+  return d === "" ? "" : path(d, "area");
 }
 
 /** Residuals as stems from zero; where they are dense, the lowest and highest of each half px. */

@@ -4,6 +4,7 @@ import type { Duty } from "../model/duty.js";
 import { type Dimension, dimensions } from "../units/dimension.js";
 import { constantsOf, type DutySettings } from "./constants.js";
 import { exchangersOf, type FeedExchanger, sizeName } from "./exchangers.js";
+import { holdings } from "./holdings.js";
 import { behindWall, type Wall, wallsOf } from "./jacket.js";
 import { bindKinetics, type Reactions } from "./kinetics.js";
 import { placesByNode } from "./places.js";
@@ -37,6 +38,8 @@ export interface Conditions {
   readonly numbers: readonly Float64Array[];
   /** Species of which nothing is left at or below `depleted`, scaled: what a mixed cell still shows there is the guard of a zero-order law. */
   readonly spends: readonly number[];
+  /** What each node holds before anything happens, scaled: where a steady state is come to from. Undefined: what is fed. */
+  readonly holds?: (node: number) => Float64Array;
 }
 
 /** A quantity that a duty rests on, and how well it is known: what an interval has to carry. */
@@ -63,7 +66,8 @@ export function conditionsOf(
     const warm = settings[`${name}.temperature`] ?? feed?.temperature?.of([]) ?? Number.NaN;
     return Float64Array.from(heat ? [...brought, warm] : brought);
   });
-  const scale = scales([...feeds, ...otherLevels(duty, species)], species.length, duty.concentrations);
+  const { held, brought } = otherLevels(duty, species);
+  const scale = scales([...feeds, ...brought], held, species.length, duty.concentrations);
   const reacting = chemistry ?? { species, reactions: [] };
   const spends = new Set<number>();
   const reactionsWith = (places: readonly string[]): Reactions => {
@@ -99,6 +103,7 @@ export function conditionsOf(
     varied: own.size > 0,
     numbers: [...new Set([reactions, ...own.values()])].flatMap(({ cell }) => cell.numbers),
     spends: [...spends],
+    ...(duty.contents ? { holds: holdings(plant, { species, scale, feeds }, duty.contents, settings) } : {}),
     ...(heat
       ? { heat: { capacity: heat.capacity, wallAt, exchangers: exchangersOf(plant, duty, heat.capacity, settings) } }
       : {}),
@@ -160,7 +165,7 @@ const fedSpecies = (duty: Duty): string[] => [
 ];
 
 /** What is there besides what is fed before a change: at the start, and after it. */
-function otherLevels(duty: Duty, species: readonly string[]): Float64Array[] {
+function otherLevels(duty: Duty, species: readonly string[]): Record<"held" | "brought", Float64Array[]> {
   const held = [...(duty.contents?.levels.values() ?? [])].map(({ species: own, temperature }) => {
     const levels = species.map((s) => own.get(s)?.value.of([]) ?? 0);
     return Float64Array.from(duty.heat && temperature ? [...levels, temperature.of([])] : levels);
@@ -171,7 +176,7 @@ function otherLevels(duty: Duty, species: readonly string[]): Float64Array[] {
       return course?.is === "upset" ? course.to.of([]) : Math.max(0, ...(course?.values ?? []));
     }),
   );
-  return [...held, ...courses];
+  return { held, brought: courses };
 }
 
 /** An Env without species at a duty's constants. */
@@ -181,18 +186,33 @@ function envAt(chemistry: Chemistry, duty: Duty): Float64Array {
   return env;
 }
 
-/** Each component by its own largest feed; a species that is not fed by the largest of those that are counted as it is. */
-function scales(feeds: readonly Float64Array[], n: number, kinds: readonly Dimension[]): Float64Array {
-  const whole = feeds.reduce((most, feed) => Math.max(most, feed.length), n);
-  const own = Float64Array.from({ length: whole }, (_, i) => Math.max(0, ...feeds.map((feed) => feed[i] ?? 0)));
+/** A trace that is held and grows is measured by what it can come to: at least by this part of what is fed and counted alike. */
+const least = 1e-3;
+
+/**
+ * Each component by its own largest feed; a species that is not fed by the largest of those that are counted as it is, or by
+ * what is held of it at the start.
+ */
+function scales(
+  feeds: readonly Float64Array[],
+  held: readonly Float64Array[],
+  n: number,
+  kinds: readonly Dimension[],
+): Float64Array {
+  const whole = [...feeds, ...held].reduce((most, feed) => Math.max(most, feed.length), n);
+  const largest = (levels: readonly Float64Array[]): Float64Array =>
+    Float64Array.from({ length: whole }, (_, i) => Math.max(0, ...levels.map((level) => level[i] ?? 0)));
+  const [fed, inside] = [largest(feeds), largest(held)];
   const alike = (i: number, j: number): boolean => {
     const [a, b] = [kinds[i] ?? dimensions.ratio, kinds[j] ?? dimensions.ratio];
     return a.every((x, d) => x === b[d]);
   };
-  return own.map((largest, i) => {
-    if (largest > 0) return largest;
-    const kin = Math.max(0, ...own.filter((_, j) => j < n && alike(i, j)));
-    return kin > 0 ? kin : 1;
+  return fed.map((own, i) => {
+    if (own > 0) return Math.max(own, inside[i]);
+    const kin = Math.max(0, ...fed.filter((_, j) => j < n && alike(i, j)));
+    if (inside[i] > 0) return Math.max(inside[i], least * kin);
+    const other = kin > 0 ? kin : Math.max(0, ...inside.filter((_, j) => j < n && alike(i, j)));
+    return other > 0 ? other : 1;
   });
 }
 

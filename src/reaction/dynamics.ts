@@ -4,9 +4,10 @@ import type { GroupBalance } from "./group.js";
 
 /** A joint has no memory: it follows within this part of the quickest body. */
 const quick = 1e-3;
-/** Mean times of the group that are followed at a time, and how often. */
+/** Mean times of the group that are followed at a time, and how often; twice as long each time where that takes few steps: a trace that grows. */
 const span = 30;
-const spells = 6;
+const spells = 8;
+const few = 300;
 
 /**
  * Follows a group in time from y until nothing changes any more: cells as they are, other bodies as if they were mixed, which
@@ -36,8 +37,8 @@ export function runInto(balance: GroupBalance, y: Float64Array): boolean {
   };
   const rate = new Float64Array(length);
   const state = y.slice();
+  let to = span * balance.meanTime;
   for (let k = 0; k < spells; k++) {
-    const to = span * balance.meanTime;
     const run = integrate({
       rhs,
       jacobian,
@@ -50,6 +51,7 @@ export function runInto(balance: GroupBalance, y: Float64Array): boolean {
     });
     if (run.end !== "reached" || !possible) break;
     state.set(run.last);
+    if (run.stats.steps < few) to *= 2;
     for (let i = 0; i < length; i++) y[i] = Math.max(state[i], 0);
     if (!balance.residual(y, rate)) break;
     if (rate.every((f, i) => Math.abs(f) <= 1e-5 * (Math.abs(y[i]) + 1e-6))) return true;

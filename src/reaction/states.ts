@@ -16,7 +16,7 @@ export interface FoundState {
   readonly stable: boolean | undefined;
   /** Its mode that grows fastest, or fades slowest. */
   readonly mode: Mode | undefined;
-  /** Does a vessel filled with what is fed run into it? Where heat is not balanced: is it the one that `steadyState` finds? */
+  /** Does a vessel filled with what is fed, or with the duty's `contents`, run into it? Without either heat or `contents`: is it the one that `steadyState` finds? */
   readonly reached: boolean;
 }
 

@@ -16,7 +16,8 @@ export type { SteadyState } from "./summary.js";
  * method with exact derivatives: up to 200 by elimination, more by iteration (BiCGStab behind an incomplete LU in flow order).
  *
  * Balances hold to about 1e-11 of each concentration; of a `dispersed` body in which a reactant runs out, to 1e-7. With a
- * chemistry that has several steady states in a loop this finds the one that the unreacted mixture runs into. What did not
+ * chemistry that has several steady states this finds the one that the unreacted mixture, or what the duty's `contents` say is
+ * inside, runs into. What did not
  * converge is said in the result (`converged`, `worst`), which then holds the best found.
  *
  * Concentrations are SI (mol/m3, kg/m3 or 1/m3, as the duty feeds them), node by node: those that leave compartment `bulk` are

@@ -135,10 +135,20 @@ export class Walk {
 
   private eliminate(nodes: Int32Array, outside: Float64Array): { y: Float64Array; result: NewtonResult } {
     const balance = this.balanceOf(nodes, outside);
-    const y = balance.mixed() ?? outside.slice();
-    // With heat there may be several states: the one is wanted that a vessel filled with what is fed runs into.
-    const byTime = this.conditions.heat !== undefined && y.length <= mostFollowed;
+    const y = this.startOf(nodes, balance, outside);
+    // With heat there may be several states: the one is wanted that a vessel filled with what is fed, or told, runs into.
+    const { heat, holds } = this.conditions;
+    const byTime = (heat ?? holds) !== undefined && y.length <= mostFollowed;
     return { y, result: settleGroup(balance, y, byTime, () => rangeOf(this.conditions, nodes, balance, outside)) };
+  }
+
+  /** What the duty says that is inside, else what is fed before anything reacts. */
+  private startOf(nodes: Int32Array, balance: GroupBalance, outside: Float64Array): Float64Array {
+    const { holds } = this.conditions;
+    if (!holds) return balance.mixed() ?? outside.slice();
+    const y = new Float64Array(outside.length);
+    for (let p = 0; p < nodes.length; p++) y.set(holds(nodes[p]), p * this.n);
+    return y;
   }
 
   private balanceOf(nodes: Int32Array, outside: Float64Array): GroupBalance {
@@ -174,7 +184,7 @@ export class Walk {
     const outside = new Float64Array(nodes.length * n);
     for (let p = 0; p < nodes.length; p++) this.bring(nodes[p], outside, p * n);
     const balance = this.balanceOf(nodes, outside);
-    const first = balance.mixed() ?? outside.slice();
+    const first = this.startOf(nodes, balance, outside);
     const range = rangeOf(this.conditions, nodes, balance, outside);
     const result = settleGroup(balance, first, true, () => range);
     const states = groupStates(balance, range, first, result);

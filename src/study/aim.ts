@@ -1,20 +1,17 @@
 import type { Aim } from "../model/aim.js";
-import { crossings, type Looked, remembered, stretches, withPeak } from "../numerics/crossings.js";
+import { crossings, type Looked, remembered, stretches } from "../numerics/crossings.js";
 import type { Figure } from "../reaction/figures.js";
+import { asideOf, keptBy, looked, overStretches, squashed, standardError } from "./aim-looks.js";
+import type { AimRange, Stretch } from "./aim-range.js";
 import { betterIs } from "./direction.js";
-import { type Input, rowWith } from "./inputs.js";
+import { rowWith } from "./inputs.js";
+import { type JumpFound, jumpsAlong } from "./jumps.js";
+import { metByAll } from "./met-by-all.js";
 import { noRow, type Operation, operate, type Row, valuesAt } from "./operate.js";
 import { type OtherStates, otherStates } from "./other-states.js";
-import { quantile } from "./spread.js";
 import { spaced, type Watch } from "./sweep.js";
 
-/** Where to look for a value that meets an aim. SI. */
-export interface AimRange {
-  readonly input: Input;
-  readonly from: number;
-  readonly to: number;
-  readonly log: boolean;
-}
+export type { AimRange, Stretch } from "./aim-range.js";
 
 export interface AimOptions extends Watch {
   /** Draws of what is unsure. */
@@ -23,13 +20,8 @@ export interface AimOptions extends Watch {
   readonly confidence?: number;
 }
 
-/** A stretch of the range in which the aim is met. SI. */
-export interface Stretch {
-  readonly from: number;
-  readonly to: number;
-}
-
 export interface AimResult {
+  readonly operation: Operation;
   readonly aim: Aim;
   readonly range: AimRange;
   /** As asked; with `=` and a confidence the better side is meant. */
@@ -39,6 +31,10 @@ export interface AimResult {
   readonly crossings: readonly Reached[];
   /** Where the aim is met; empty where it is `=`. */
   readonly met: readonly Stretch[];
+  /** The same in every stable steady state that was found; undefined where there is but one, or it was not followed. */
+  readonly metByAll: readonly Stretch[] | undefined;
+  /** Where the figure jumps at the middle values. */
+  readonly jumps: readonly JumpFound[];
   /** The point that comes nearest; where the aim is met, the best. */
   readonly best: Reached | undefined;
   /** Stretches in which no vessel is possible, with a reason. */
@@ -65,8 +61,6 @@ export interface Reached {
 const looks = 33;
 /** Values over the range at which further steady states are looked for. */
 const searches = 9;
-/** Points over each stretch in which the middle values meet the aim, where draws are looked at. */
-const looksOverDraws = 5;
 
 /**
  * The values of one input at which a figure of a duty meets an aim: looked for on a grid over the whole range, then found
@@ -87,12 +81,15 @@ export function solveAim(operation: Operation, aim: Aim, range: AimRange, option
   const scale = Math.abs(aim.target.value) || 1;
   const over = (value: number): number => squashed((value - aim.target.value) * (sign === "<=" ? -1 : 1), scale);
   const whys = new Map<number, string>();
+  const values = new Map<number, number>();
   let spent = 0;
   const middle = remembered((share) => {
     options.progress?.(Math.min(0.5, spent++ / (2 * looks)));
     const here = operate(own, place(share));
     if (here.cannot !== undefined) whys.set(share, here.cannot);
-    return over(here.figures?.[0].value ?? Number.NaN);
+    const value = here.figures?.[0].value ?? Number.NaN;
+    values.set(share, value);
+    return over(value);
   });
   const drawn = (share: number): number[] =>
     rows.map((row) => valuesAt(own, rowWith(row, [input], [at(share)]))?.[0] ?? Number.NaN);
@@ -111,20 +108,24 @@ export function solveAim(operation: Operation, aim: Aim, range: AimRange, option
   const first = stopped ? grid : looked(middle, grid, sign);
   const f = sure === undefined ? middle : keptOver;
   const seen = sure === undefined || stopped ? first : overStretches(first, keptOver);
-  const zeros = stopped ? [] : crossings(f, seen, sure === undefined ? 0 : 1e-3 / looks);
+  const near = sure === undefined ? 1e-8 : 1e-3 / looks;
+  const edges = stopped
+    ? []
+    : crossings(f, seen, sure === undefined ? 0 : near).map((zero) => asideOf(f, zero, seen, near));
+  const zeros = edges.flatMap((e) => (sign === "=" && e.over ? [] : [e.x]));
   const reached = (share: number): Reached[] => {
     const figure = operate(own, place(share)).figures?.[0];
     if (!figure) return [];
-    const values = drawn(share).filter((v) => !Number.isNaN(v));
+    const drawnThere = drawn(share).filter((v) => !Number.isNaN(v));
     const side = (aim.sign === "=" ? better : aim.sign) === "<=" ? -1 : 1;
     // A draw that is the target itself meets it.
-    const meeting = values.filter((v) => (v - aim.target.value) * side >= -1e-9 * scale).length;
+    const meeting = drawnThere.filter((v) => (v - aim.target.value) * side >= -1e-9 * scale).length;
     return [
       {
         at: at(share),
         figure,
-        share: values.length > 0 ? meeting / values.length : undefined,
-        shareError: values.length > 0 ? 2 * standardError(meeting, values.length) : undefined,
+        share: drawnThere.length > 0 ? meeting / drawnThere.length : undefined,
+        shareError: drawnThere.length > 0 ? 2 * standardError(meeting, drawnThere.length) : undefined,
         kept: sure === undefined ? undefined : kept(share),
       },
     ];
@@ -138,69 +139,27 @@ export function solveAim(operation: Operation, aim: Aim, range: AimRange, option
     .filter((p) => !Number.isNaN(p.value))
     .reduce<Looked | undefined>((a, b) => (!a || rank(b) > rank(a) ? b : a), undefined);
   const inInput = ({ from: a, to: b }: Stretch): Stretch => ({ from: at(a), to: at(b) });
+  const met = sign === "=" ? [] : stretches(seen, zeros, (v) => v >= 0).map(inInput);
+  const others = stopped ? [] : [...spaced(0, 1, searches, false), ...zeros].sort((a, b) => a - b).flatMap(searched);
+  const told = [...values].map(([share, value]) => ({ x: at(share), values: [value] }));
+  const jumps = stopped ? [] : jumpsAlong(own, input, told, noRow, options.cancelled);
   return {
+    operation,
     aim,
     range,
     sign,
     confidence: sure,
     crossings: zeros.flatMap(reached),
-    met: sign === "=" ? [] : stretches(seen, zeros, (v) => v >= 0).map(inInput),
+    met,
+    metByAll: stopped || met.length === 0 ? undefined : metByAll(own, aim, range, met, others),
+    jumps,
     best: best && reached(best.x)[0],
     impossible: stretches(first, [], Number.isNaN).map((s) => ({
       ...inInput(s),
       why: whys.get(s.from) ?? "there is no figure",
     })),
-    others: stopped ? [] : [...spaced(0, 1, searches, false), ...zeros].sort((a, b) => a - b).flatMap(searched),
+    others,
     draws: rows.length,
     stopped,
   };
-}
-
-/** The grid with a peak that it steps over, and of `=` a trough as well. */
-function looked(f: (x: number) => number, grid: readonly Looked[], sign: Aim["sign"]): Looked[] {
-  const tolerance = 1e-6;
-  const up = withPeak(f, grid, tolerance);
-  if (sign !== "=") return up;
-  const turned = up.map(({ x, value }) => ({ x, value: -value }));
-  return withPeak((x) => -f(x), turned, tolerance).map(({ x, value }) => ({ x, value: -value }));
-}
-
-/**
- * Looks again, over the draws, where the middle values meet the aim, one point of the grid further on both sides; nowhere else
- * do nine in ten draws meet it. Where none does, at the best point alone.
- */
-function overStretches(first: readonly Looked[], f: (x: number) => number): Looked[] {
-  const met = stretches(first, [], (v) => v >= 0);
-  if (met.length === 0) {
-    const whole = first.filter((p) => !Number.isNaN(p.value));
-    const best = whole.reduce<Looked | undefined>((a, b) => (!a || b.value > a.value ? b : a), undefined);
-    return best ? [{ x: best.x, value: f(best.x) }] : [];
-  }
-  const places = met.flatMap(({ from, to }) => {
-    const [before, after] = [first.findIndex((p) => p.x === from) - 1, first.findIndex((p) => p.x === to) + 1];
-    return [
-      ...(first[before] ? [first[before].x] : []),
-      ...(from === to ? [from] : spaced(from, to, looksOverDraws, false)),
-      ...(first[after] ? [first[after].x] : []),
-    ];
-  });
-  return [...new Set(places)].sort((a, b) => a - b).map((x) => ({ x, value: f(x) }));
-}
-
-/** What a share of the draws keeps: at least, or with `<=` at most. NaN where a tenth of the draws or more give no figure. */
-function keptBy(drawn: readonly number[], confidence: number, sign: ">=" | "<="): number {
-  const sorted = drawn.filter((v) => !Number.isNaN(v)).sort((a, b) => a - b);
-  if (sorted.length < 0.9 * drawn.length || sorted.length < fewestDraws) return Number.NaN;
-  return quantile(sorted, sign === "<=" ? confidence : 1 - confidence);
-}
-
-const fewestDraws = 20;
-
-const squashed = (x: number, scale: number): number =>
-  Number.isFinite(x) ? x / (Math.abs(x) + scale) : Number.isNaN(x) ? x : Math.sign(x);
-
-/** Standard error of a share of draws, by the rule that adds two draws of each sort (A. Agresti, B.A. Coull, Am. Stat. 52 (1998) 119-126, from memory). */
-function standardError(meeting: number, draws: number): number {
-  const share = (meeting + 2) / (draws + 4);
-  return Math.sqrt((share * (1 - share)) / (draws + 4));
 }

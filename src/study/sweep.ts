@@ -1,5 +1,6 @@
 import type { Figure } from "../reaction/figures.js";
 import { type Input, rowWith } from "./inputs.js";
+import { type JumpFound, jumpsAlong } from "./jumps.js";
 import { noRow, type Operation, operate, type Row, valuesAt } from "./operate.js";
 import { type OtherStates, otherStates, someOf } from "./other-states.js";
 import { interval95 } from "./spread.js";
@@ -28,8 +29,15 @@ export interface Sweep {
   readonly points: readonly SweepPoint[];
   /** Where a search found further steady states, or could not look, at some of the points. */
   readonly others: readonly OtherStates[];
+  /** Where figures jump along the first axis, between points that no line may join. */
+  readonly jumps: readonly SweepJump[];
   readonly draws: number;
   readonly stopped: boolean;
+}
+
+/** A jump along the first axis, at one value of the second (SI; undefined where there is none). */
+export interface SweepJump extends JumpFound {
+  readonly beside: number | undefined;
 }
 
 export interface Watch {
@@ -66,7 +74,24 @@ export function sweep(operation: Operation, axes: readonly Axis[], rows: readonl
     if (!figures || watch.cancelled?.()) return [];
     return otherStates(operation, rowWith(noRow, inputs, at), at) ?? [];
   });
-  return { operation, axes, points, others, draws: rows.length, stopped: points.length < places.length };
+  const stopped = points.length < places.length;
+  const jumps = stopped ? [] : jumpsOf(operation, axes, points, watch);
+  return { operation, axes, points, others, jumps, draws: rows.length, stopped };
+}
+
+function jumpsOf(
+  operation: Operation,
+  [first, second]: readonly Axis[],
+  points: readonly SweepPoint[],
+  { cancelled }: Watch,
+): SweepJump[] {
+  return (second?.values ?? [undefined]).flatMap((beside) => {
+    const along = points.flatMap(({ at, figures }) =>
+      at[1] === beside && figures ? [{ x: at[0], values: figures.map((f) => f.value) }] : [],
+    );
+    const row = beside === undefined ? noRow : rowWith(noRow, [second.input], [beside]);
+    return jumpsAlong(operation, first.input, along, row, cancelled).map((jump) => ({ ...jump, beside }));
+  });
 }
 
 /** `count` values from one end to the other, both exact; in equal ratios where `log`. */

@@ -1,5 +1,5 @@
 import type { Plant } from "../compile/plant.js";
-import type { Duty, DutyContents, FeedCourse } from "../model/duty.js";
+import type { Duty, FeedCourse } from "../model/duty.js";
 import type { Conditions, DutySettings } from "../reaction/conditions.js";
 import { FeedSignal } from "./feed-signal.js";
 
@@ -61,40 +61,6 @@ function lineAt({ times, values }: Line, t: number, side: number): number {
   if (k < 0) return values[0];
   if (k + 1 >= times.length) return values[k];
   return values[k] + ((values[k + 1] - values[k]) * (t - times[k])) / (times[k + 1] - times[k]);
-}
-
-/**
- * What a node holds at the start, scaled: the levels of the longest name that it lies under, else of `all`, else nothing. Where
- * heat is balanced and no temperature is given, that of all feeds mixed.
- */
-export function holdings(
-  plant: Plant,
-  { species, scale, feeds }: Conditions,
-  contents: DutyContents | undefined,
-  settings: DutySettings,
-): (node: number) => Float64Array {
-  const made = new Map<string, Float64Array>();
-  const flow = plant.feeds.reduce((sum, f) => sum + f.flow, 0);
-  const mixed = plant.feeds.reduce((sum, f, k) => sum + f.flow * feeds[k][species.length], 0) / flow;
-  const of = (name: string): Float64Array => {
-    let level = made.get(name);
-    if (!level) {
-      const given = contents?.levels.get(name);
-      level = scale.map((s, i) => {
-        if (i === species.length) return (given?.temperature?.of([]) ?? mixed) / s;
-        return (settings[`${name}.${species[i]}`] ?? given?.species.get(species[i])?.value.of([]) ?? 0) / s;
-      });
-      made.set(name, level);
-    }
-    return level;
-  };
-  return (node) => {
-    let name = plant.columns.nameOf(node);
-    for (; name !== ""; name = name.slice(0, Math.max(0, name.lastIndexOf(".")))) {
-      if (contents?.levels.has(name)) return of(name);
-    }
-    return of("all");
-  };
 }
 
 /** When what is fed changes for the last time, s; 0 where it does not. */

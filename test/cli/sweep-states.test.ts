@@ -85,6 +85,50 @@ describe("several steady states in a sweep", () => {
     expect(at(document, "otherStates")).toHaveLength(1);
   });
 
+  test("a jump is told with its place, its name and how far back it goes", async () => {
+    const args = ["sweep", "tank.yaml", "--duty", "hot.yaml", "--over", "feed.temperature=285 K..320 K:8"];
+    const { document } = await json([...args, "--draws", "0"], { files });
+    expect(at(document, "jumps")).toHaveLength(1);
+    expect(at(document, "jumps.0.what")).toBe("ignites");
+    // x / (1 - x) = 10 k(T) with T = T0 + 100 x turns where T0(x) does.
+    const feedFor = (x: number): number => {
+      const T = 1 / (1 / 300 - (8.314462618 / 80_000) * Math.log(x / (1 - x) / 0.01));
+      return T - 100 * x;
+    };
+    const all = Array.from({ length: 99_999 }, (_, k) => feedFor((k + 1) / 100_000));
+    const turns = all.filter((T, k) => k > 0 && k < all.length - 1 && (T - all[k - 1]) * (all[k + 1] - T) < 0);
+    expect(turns).toHaveLength(2);
+    expect(at(document, "jumps.0.at.value")).toBeCloseTo(turns[0], 4);
+    expect(at(document, "jumps.0.staysDownTo.value")).toBeCloseTo(turns[1], 5);
+    expect(at(document, "jumps.0.figures.0.before.value")).toBeLessThan(0.13);
+    expect(at(document, "jumps.0.figures.0.after.value")).toBeGreaterThan(0.98);
+    const { out } = await backmix([...args, "--draws", "0"], { files });
+    const said = out.replace(/\s+/g, " ");
+    expect(said).toContain("At feed.temperature = 314.6 K the vessel ignites as feed.temperature rises");
+    expect(said).toContain("Once there it stays so as feed.temperature falls again, down to 288.8 K.");
+  });
+
+  test("what the duty says the vessel holds chooses the state, in a sweep and an aim", async () => {
+    const living = { ...files, "monod.yaml": `${files["monod.yaml"]}contents: {tank: {X: 1e-6 g/L}}\n` };
+    const { document } = await json(
+      ["sweep", "chemostat.yaml", "--duty", "monod.yaml", "--aim", "conversion of S = 90 %", "--by", "Q"],
+      { files: living },
+    );
+    // S = ks D / (mu - D) = 1 g/L.
+    expect(at(document, "crossings.0.value")).toBeCloseTo((0.5 * 1) / (0.1 + 1), 8);
+    const { document: swept } = await json(
+      ["sweep", "chemostat.yaml", "--duty", "monod.yaml", "--over", "Q=0.4 L/h..0.6 L/h:3"],
+      { files: living },
+    );
+    expect(at(swept, "points.0.figures.0.value")).toBeCloseTo(1 - (0.1 * 0.4) / 0.1 / 10, 9);
+    expect(at(swept, "points.2.figures.0.value")).toBeCloseTo(0, 9);
+    const { out } = await backmix(
+      ["sweep", "chemostat.yaml", "--duty", "monod.yaml", "--over", "Q=0.4 L/h..0.6 L/h:3"],
+      { files },
+    );
+    expect(out.replace(/\s+/g, " ")).toContain("Say under `contents:` of the duty what the vessel holds");
+  });
+
   test("where one state is found nothing is said of others; kill carries its caution", async () => {
     const { out: stdout } = await backmix(
       ["sweep", "tank.yaml", "--duty", "mild.yaml", "--over", "feed.A=0.05..0.1 mol/L:2"],

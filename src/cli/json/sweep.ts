@@ -1,4 +1,7 @@
+import type { Reported } from "../../model/duty.js";
+import type { Figure } from "../../reaction/figures.js";
 import type { AimResult, Reached } from "../../study/aim.js";
+import type { JumpFound } from "../../study/jumps.js";
 import type { OtherStates } from "../../study/other-states.js";
 import type { Sweep } from "../../study/sweep.js";
 import { inUnit, type Unit } from "../../units/unit.js";
@@ -6,7 +9,7 @@ import { finite, type QuantityJson, quantity, series, unitName } from "./quantit
 import { reportedJson } from "./steady.js";
 
 /** A sweep: its inputs, then every point with its figures, or why there are none. Conversion, yield and selectivity are fractions. */
-export function sweepJson({ axes, points, others, draws, stopped }: Sweep): Record<string, unknown> {
+export function sweepJson({ operation, axes, points, others, jumps, draws, stopped }: Sweep): Record<string, unknown> {
   return {
     over: axes.map(({ input, values }) => ({ name: input.name, ...series(values, input.unit) })),
     points: points.map(({ at, figures, cannot, intervals }) => ({
@@ -27,10 +30,36 @@ export function sweepJson({ axes, points, others, draws, stopped }: Sweep): Reco
         axes.map((a) => a.input.unit),
       ),
     ),
+    jumps: jumps.map((jump) => ({
+      ...jumpJson(jump, axes[0].input.unit, operation.duty.report, points.find((p) => p.figures)?.figures ?? []),
+      ...(axes[1] && jump.beside !== undefined ? { where: quantity(jump.beside, axes[1].input.unit) } : {}),
+    })),
     draws,
     ...(stopped ? { stopped: "cancelled" } : {}),
   };
 }
+
+/** Where figures jump as an input rises: `what` happens there, and how far the states on both sides go on. */
+export const jumpJson = (
+  { below, above, lines, what, stays }: JumpFound,
+  unit: Unit,
+  report: readonly Reported[],
+  figures: readonly Figure[],
+): object => ({
+  at: quantity((below + above) / 2, unit),
+  what,
+  figures: lines.map(({ line, before, after }) => ({
+    name: report[line].text,
+    before: quantity(before, figures[line].unit),
+    after: quantity(after, figures[line].unit),
+  })),
+  ...(stays
+    ? {
+        staysDownTo: stays.down === undefined ? null : quantity(stays.down, unit),
+        staysUpTo: stays.up === undefined ? null : quantity(stays.up, unit),
+      }
+    : {}),
+});
 
 const intervalJson = (interval: readonly [number, number] | undefined, unit: Unit): (number | null)[] | null =>
   interval ? interval.map((v) => finite(inUnit(v, unit))) : null;
@@ -63,7 +92,8 @@ export function sweepCsv({ operation, axes, points }: Sweep): string {
 
 /** What an aim came to. */
 export function aimJson(found: AimResult): Record<string, unknown> {
-  const { aim, range, sign, confidence, crossings, met, best, impossible, others, draws, stopped } = found;
+  const { aim, range, sign, confidence, crossings, met, metByAll, jumps, best, impossible, others, draws, stopped } =
+    found;
   const { unit } = range.input;
   const stretch = ({ from, to }: { from: number; to: number }): object => ({
     from: quantity(from, unit),
@@ -76,6 +106,8 @@ export function aimJson(found: AimResult): Record<string, unknown> {
     reachable: crossings.length > 0 || met.length > 0,
     crossings: crossings.map((c) => reachedJson(c, unit)),
     met: met.map(stretch),
+    ...(metByAll ? { metInEveryState: metByAll.map(stretch) } : {}),
+    jumps: best ? jumps.map((jump) => jumpJson(jump, unit, [aim.line], [best.figure])) : [],
     best: best ? reachedJson(best, unit) : null,
     impossible: impossible.map((s) => ({ ...stretch(s), why: s.why })),
     otherStates: others.map((o) => otherStatesJson(o, [unit])),

@@ -14,7 +14,7 @@ export function aimText({ network, duty }: Operation, found: AimResult, carries:
   const rows = (crossings.length > 0 ? crossings : best ? [best] : []).map(({ at, figure, share, kept }) => {
     const unit = peopleUnit(aim.line.what, figure.unit) ?? figure.unit;
     return [
-      formatQuantity(at, input.unit),
+      formatQuantity(at, input.unit, 6),
       figure.why ?? formatQuantity(figure.value, unit),
       ...(kept === undefined ? [] : [Number.isFinite(kept) ? formatQuantity(kept, unit) : ""]),
       ...(share === undefined ? [] : [chance(share)]),

@@ -3,6 +3,7 @@ import type { Duty } from "../../model/duty.js";
 import { figuresOf, temperatureUnit } from "../../reaction/figures.js";
 import type { FoundState, StatesFound } from "../../reaction/states.js";
 import { cautionsFor } from "../../report/cautions.js";
+import { filled } from "../../report/study/states-words.js";
 import { formatNumber, formatQuantity } from "../../units/format.js";
 import { inUnit, type Unit } from "../../units/unit.js";
 import { reportedText } from "./steady.js";
@@ -39,7 +40,7 @@ export function statesText(plant: Plant, duty: Duty, found: StatesFound | undefi
     stabilityOf(s, plant) || "not judged",
   ]);
   const starred = states.some((s) => s.reached)
-    ? "  * where a vessel filled with what is fed runs to; the others are reached by another start or an upset"
+    ? `  * where ${filled(duty.contents)} runs to; the others are reached by another start or an upset`
     : "";
   const says = `  ${states.length} steady states found from many starts${unsearched ? ` (${unsearched})` : ""}: which one the vessel runs at depends on how it came there.${states.every((x) => x.stable === false) ? " None of them is stable: it swings." : ""}`;
   return blocks(says, [table(columns, rows), starred].filter((t) => t !== "").join("\n"), caution);

@@ -1,5 +1,6 @@
 import { estimateWords } from "../../report/digits.js";
 import { dutyCautions } from "../../report/duty-cautions.js";
+import { sweepJumpWords } from "../../report/study/jump-words.js";
 import { sweepStatesWords } from "../../report/study/states-words.js";
 import type { Sweep, SweepPoint } from "../../study/sweep.js";
 import { formatNumber, formatQuantity } from "../../units/format.js";
@@ -37,9 +38,7 @@ export function sweepText(found: Sweep, carries: string): string {
         ),
     leftOut(found),
     carries === "" ? "" : wrap("  ", `in brackets: 95 % of what is possible (${carries})`),
-    sweepStatesWords(found)
-      .map((says) => wrap("  ", says))
-      .join("\n"),
+    [...sweepJumpWords(found), ...sweepStatesWords(found)].map((says) => wrap("  ", says)).join("\n"),
     dutyCautions(operation.duty)
       .map(({ says }) => wrap("  caution: ", says))
       .join("\n"),

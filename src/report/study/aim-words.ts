@@ -1,7 +1,8 @@
 import type { AimResult, Stretch } from "../../study/aim.js";
 import { formatQuantity } from "../../units/format.js";
-import type { Unit } from "../../units/unit.js";
+import { fromUnit, inUnit, type Unit } from "../../units/unit.js";
 import { chance } from "../digits.js";
+import { jumpWords } from "./jump-words.js";
 import { aimStatesWords } from "./states-words.js";
 
 const digits = 4;
@@ -11,7 +12,7 @@ export const aimText = (text: string): string => text.replace(">=", "≥").repla
 
 /** The answer to an aim in one to three sentences: where it is met, how surely, what cannot be. */
 export function aimWords(found: AimResult): string[] {
-  const { aim, range, sign, confidence, crossings, met, best, impossible, draws } = found;
+  const { aim, range, sign, confidence, crossings, met, metByAll, best, impossible, draws, jumps } = found;
   const { name, unit } = range.input;
   const say = (x: number): string => formatQuantity(x, unit, digits);
   const target = aimText(aim.text);
@@ -30,7 +31,9 @@ export function aimWords(found: AimResult): string[] {
         : `${target} at ${crossings.length} values of ${name}: ${crossings.map((c) => say(c.at)).join(", ")}. Look at which of them is meant.`,
     );
   } else {
-    said.push(`${target}${sure} ${whereWords(met, found, say)}.`);
+    said.push(
+      `${target}${sure} where ${name} is ${whereWords(met, found)} (looked at ${say(range.from)} to ${say(range.to)}).`,
+    );
   }
   if (confidence === undefined && crossings.length > 0 && crossings[0].share !== undefined) {
     const shares = [...new Set(crossings.map((c) => chance(c.share ?? Number.NaN)))].join(" and ");
@@ -48,17 +51,39 @@ export function aimWords(found: AimResult): string[] {
     const place = from === to ? `at ${say(from)}` : `from ${say(from)} to ${say(to)}`;
     said.push(`Left out: ${name} ${place}: ${why}.`);
   }
-  return [...said, ...aimStatesWords(found)];
+  const figureUnit = best?.figure.unit;
+  if (figureUnit) said.push(...jumps.map((jump) => jumpWords(jump, range.input, [aim.line], [figureUnit])));
+  said.push(...aimStatesWords(found));
+  if (metByAll) {
+    const where =
+      metByAll.length > 0 ? `only where ${name} is ${whereWords(metByAll, found)}` : `nowhere in this range`;
+    said.push(`Whichever of the steady states found the vessel runs at, the aim is met ${where}.`);
+  }
+  return said;
 }
 
-function whereWords(met: readonly Stretch[], { range }: AimResult, say: (x: number) => string): string {
+function whereWords(met: readonly Stretch[], { range }: AimResult): string {
+  const { unit } = range.input;
   const words = met.map(({ from, to }) => {
     const [low, high] = [from > range.from, to < range.to];
-    if (!low && !high) return `anything from ${say(from)} to ${say(to)}`;
-    if (!high) return `from ${say(from)} up`;
-    return low ? `from ${say(from)} to ${say(to)}` : `up to ${say(to)}`;
+    const [a, b] = [low ? inside(from, unit, 1) : from, high ? inside(to, unit, -1) : to];
+    const narrow = a >= b;
+    const say = (x: number, exact: number): string => formatQuantity(narrow ? exact : x, unit, narrow ? 8 : digits);
+    if (!low && !high) return `anything from ${say(a, from)} to ${say(b, to)}`;
+    if (!high) return `from ${say(a, from)} up`;
+    return low ? `from ${say(a, from)} to ${say(b, to)}` : `up to ${say(b, to)}`;
   });
-  return `where ${range.input.name} is ${words.join(", and ")} (looked at ${say(range.from)} to ${say(range.to)})`;
+  return words.join(", and ");
+}
+
+/** The end of a stretch as it is printed, rounded into it: a value that is taken from the page must meet the aim. SI. */
+function inside(si: number, unit: Unit, towards: 1 | -1): number {
+  const x = inUnit(si, unit);
+  const step = 10 ** (Math.floor(Math.log10(Math.abs(x))) - digits + 1);
+  if (!Number.isFinite(step) || step === 0) return si;
+  // What rounding alone has left beside a round number is not a digit more.
+  const steps = towards > 0 ? Math.ceil(x / step - 1e-6) : Math.floor(x / step + 1e-6);
+  return fromUnit(steps * step, unit);
 }
 
 /** The best figure, or with a confidence what the draws keep there. */

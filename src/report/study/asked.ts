@@ -2,6 +2,7 @@ import type { Asked } from "../../model/study.js";
 import type { Answered, StudyResult } from "../../study/result.js";
 import type { Figure, ReportAim } from "../input.js";
 import { aimText, aimWords } from "./aim-words.js";
+import { sweepJumpWords } from "./jump-words.js";
 import { sweepStatesWords } from "./states-words.js";
 import { plotSweep } from "./sweep-figure.js";
 import { beyondAim, beyondRange, beyondWords } from "./tested.js";
@@ -36,9 +37,10 @@ export function sweepFigures(result: StudyResult): Figure[] {
       {
         name: `sweep-${k + 1}`,
         ...plotSweep(found, { untitled: true }),
-        caption: `${asked.duty.title} over ${names}${about(result, answer)}${ownFlow ? "" : beyondWords(result.study, asked.duty)}${band}.${beyond}${gaps}${sweepStatesWords(
-          found,
-        )
+        caption: `${asked.duty.title} over ${names}${about(result, answer)}${ownFlow ? "" : beyondWords(result.study, asked.duty)}${band}.${beyond}${gaps}${[
+          ...sweepJumpWords(found),
+          ...sweepStatesWords(found),
+        ]
           .map((s) => ` ${s}`)
           .join("")}`,
       },

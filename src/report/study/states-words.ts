@@ -1,5 +1,5 @@
 import type { Aim } from "../../model/aim.js";
-import type { Reported } from "../../model/duty.js";
+import type { Duty, Reported } from "../../model/duty.js";
 import type { Figure } from "../../reaction/figures.js";
 import type { AimResult } from "../../study/aim.js";
 import type { Input } from "../../study/inputs.js";
@@ -14,23 +14,26 @@ export function sweepStatesWords({ others, axes, operation }: Sweep): string[] {
   return statesWords(
     others,
     axes.map((a) => a.input),
-    operation.duty.report,
+    operation.duty,
     "The figures above are of",
   );
 }
 
 /** The same of an aim, with whether the other states meet it. */
-export const aimStatesWords = ({ others, range, aim }: AimResult): string[] =>
-  statesWords(others, [range.input], [aim.line], "The answer holds for", aim);
+export const aimStatesWords = ({ others, range, aim, operation }: AimResult): string[] =>
+  statesWords(others, [range.input], { ...operation.duty, report: [aim.line] }, "The answer holds for", aim);
 
 /** The same of one duty. */
-export const dutyStatesWords = (found: OtherStates | undefined, lines: readonly Reported[]): string[] =>
-  found ? statesWords([found], [], lines, "The figures are of") : [];
+export const dutyStatesWords = (found: OtherStates | undefined, duty: Told): string[] =>
+  found ? statesWords([found], [], duty, "The figures are of") : [];
+
+/** What a duty says of where it starts, and what it reports. */
+type Told = Pick<Duty, "report" | "contents">;
 
 function statesWords(
   others: readonly OtherStates[],
   inputs: readonly Input[],
-  lines: readonly Reported[],
+  { report: lines, contents }: Told,
   subject: string,
   aim?: Aim,
 ): string[] {
@@ -47,12 +50,12 @@ function statesWords(
     const against = aim && aim.sign !== "=" && other && !meets(other, aim) ? ", which does not meet the aim" : "";
     const gives = other ? ` ${place(one, inputs)}${kind} gives ${figuresWords(other.figures, lines)}${against}.` : "";
     words.push(
-      `Several steady states${range(several)}: which one the vessel runs at depends on how it came there. ${subject} the one that a vessel filled with what is fed runs to.${capital(gives)}`,
+      `Several steady states${range(several)}: which one the vessel runs at depends on how it came there. ${subject} the one that ${filled(contents)} runs to.${capital(gives)}`,
     );
   }
   if (away.length > 0) {
     words.push(
-      `The steady state that is followed is unstable${range(away)}: the vessel does not stay there, and these figures are not what it will give.`,
+      `The steady state that is followed is unstable${range(away)}: the vessel does not stay there, and these figures are not what it will give.${contents ? "" : " Say under `contents:` of the duty what the vessel holds, a trace where a trace is enough: then the state that it runs to is followed."}`,
     );
   }
   if (words.length > 0) {
@@ -109,6 +112,10 @@ function placesOf(list: readonly OtherStates[], inputs: readonly Input[]): strin
   return ` at ${list.length} values of ${name} looked at, from ${formatQuantity(low, unit, 4)} to ${formatQuantity(high, unit, 4)}`;
 }
 
+/** What the vessel holds before anything happens. */
+export const filled = (contents: Duty["contents"]): string =>
+  contents ? "a vessel that holds the `contents` of the duty" : "a vessel filled with what is fed";
+
 const capital = (text: string): string => text.replace(/^ ([a-z])/, (_, c: string) => ` ${c.toUpperCase()}`);
 
 /** What a study has to tell of steady states beside those of its predictions, by duty and rival. */
@@ -116,7 +123,7 @@ export function studyStatesWords({ predictions, ranking }: StudyResult): string[
   const named = ranking.filter((r) => r.survives).length > 1;
   const first = predictions.filter((p, k) => predictions.findIndex((q) => q.states === p.states) === k);
   return first.flatMap(({ duty, rival, states }) => {
-    const says = dutyStatesWords(states, duty.report).join(" ");
+    const says = dutyStatesWords(states, duty).join(" ");
     return says === "" ? [] : [`${duty.title}${named ? ` (by '${rival.network.title}')` : ""}: ${says}`];
   });
 }

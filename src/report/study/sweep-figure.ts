@@ -12,7 +12,7 @@ const mostLines = 6;
  * Every figure of a sweep over its first input, one plot each; where there is a second input, one line for each of its values.
  * Bands hold 95 % of what is possible.
  */
-export function plotSweep({ operation, axes, points }: Sweep, options: CurvesOptions = {}): Plotted {
+export function plotSweep({ operation, axes, points, jumps }: Sweep, options: CurvesOptions = {}): Plotted {
   const { network, duty } = operation;
   const [first, second] = axes;
   const { input, log } = first;
@@ -25,25 +25,37 @@ export function plotSweep({ operation, axes, points }: Sweep, options: CurvesOpt
     const shown = readingUnit(duty, reported.text, unit);
     const of = (p: SweepPoint | undefined, v: number | undefined): number =>
       p?.figures && v !== undefined && Number.isFinite(v) ? inUnit(v, shown) : Number.NaN;
-    const x = first.values.map((v) => inUnit(v, input.unit));
     const lines = chosen.map((j) => {
+      const beside = second?.values[j];
+      const own = jumps.filter((jump) => jump.beside === beside && jump.lines.some((l) => l.line === k));
       const along = first.values.map((_, i) => points[i * count + j] as SweepPoint | undefined);
       const banded = along.some((p) => p?.intervals[k]);
+      const value = (p: SweepPoint | undefined): number => of(p, p?.figures?.[k].value);
+      const shape = broken(
+        first.values.map((v, i) => ({
+          x: v,
+          y: value(along[i]),
+          low: of(along[i], along[i]?.intervals[k]?.[0]),
+          high: of(along[i], along[i]?.intervals[k]?.[1]),
+        })),
+        own.map(({ below, above, lines: all }) => {
+          const jump = all.find((l) => l.line === k);
+          const sides = [jump?.before ?? Number.NaN, jump?.after ?? Number.NaN] as const;
+          return {
+            below,
+            above,
+            sides: sides.map((v) => (Number.isFinite(v) ? inUnit(v, shown) : Number.NaN)) as [number, number],
+          };
+        }),
+      );
       return {
         label: second
           ? `${second.input.name} ${formatQuantity(second.values[j], second.input.unit, 3)}`
           : reported.text,
         unnamed: !second,
-        x,
-        y: along.map((p) => of(p, p?.figures?.[k].value)),
-        ...(banded && !second
-          ? {
-              band: {
-                low: along.map((p) => of(p, p?.intervals[k]?.[0])),
-                high: along.map((p) => of(p, p?.intervals[k]?.[1])),
-              },
-            }
-          : {}),
+        x: shape.map((p) => inUnit(p.x, input.unit)),
+        y: shape.map((p) => p.y),
+        ...(banded && !second ? { band: { low: shape.map((p) => p.low), high: shape.map((p) => p.high) } } : {}),
       };
     });
     const words = (name: string, u: Unit): string => (u.name === "" ? name : `${name}, ${u.name}`);
@@ -60,6 +72,37 @@ export function plotSweep({ operation, axes, points }: Sweep, options: CurvesOpt
   });
   const title = `${duty.title} over ${axes.map((a) => a.input.name).join(" and ")}: ${network.title}`;
   return plotStacked(title, plots, { height: plots.length > 1 ? 170 : 240, ...options });
+}
+
+interface Drawn {
+  readonly x: number;
+  readonly y: number;
+  readonly low: number;
+  readonly high: number;
+}
+
+/** A line that goes up to each side of a jump and is not joined across it; no band is known there. */
+function broken(
+  line: readonly Drawn[],
+  jumps: readonly { readonly below: number; readonly above: number; readonly sides: readonly [number, number] }[],
+): Drawn[] {
+  const rising = line.length < 2 || line[line.length - 1].x > line[0].x;
+  return line.flatMap((point, i) => {
+    const before = line[i - 1];
+    const here = before
+      ? jumps.filter((j) => j.above > Math.min(before.x, point.x) && j.below < Math.max(before.x, point.x))
+      : [];
+    const gap = here.flatMap(({ below, above, sides }) => {
+      const none = { low: Number.NaN, high: Number.NaN };
+      const ends = [
+        { x: below, y: sides[0], ...none },
+        { x: (below + above) / 2, y: Number.NaN, ...none },
+        { x: above, y: sides[1], ...none },
+      ];
+      return rising ? ends : ends.reverse();
+    });
+    return [...gap, point];
+  });
 }
 
 const unitOf = (points: readonly SweepPoint[], k: number): Unit | undefined =>

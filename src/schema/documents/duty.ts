@@ -180,7 +180,7 @@ export const dutyShape = record({
     }),
   },
   contents: {
-    says: "What places hold where a transient starts: concentrations by species, by compartment (its pockets included), member, part, or `all` for every other place; a species that is not named is not there, nor is anything in places under no name. Without `contents` a transient starts in the steady state before the first change of a feed, or, where no feed changes, with clean liquid. With `heat`, `temperature` is that of the place; where it is not given, that of all feeds mixed. A closed vessel (a flask) must have it.",
+    says: "What places hold where a transient starts: concentrations by species, by compartment (its pockets included), member, part, or `all` for every other place; a species that is not named is not there, nor is anything in places under no name. Without `contents` a transient starts in the steady state before the first change of a feed, or, where no feed changes, with clean liquid. With `heat`, `temperature` is that of the place; where it is not given, that of all feeds mixed. A closed vessel (a flask) must have it. Where there are several steady states, they also say which one is meant: that which a vessel that holds `contents` runs to (in circles of up to 200 unknowns), in `simulate`, `sweep`, aims and studies.",
     example: "{bulk: {A: 0.5 mol/L}}",
     shape: named(named(mixture), "dotted"),
   },
