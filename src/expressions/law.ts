@@ -11,6 +11,15 @@ export interface Law {
   write(env: ArrayLike<number>, out: Float64Array, at: number): void;
   /** Writes the derivatives by all names of `by`, in their order. */
   gradient(env: ArrayLike<number>, out: Float64Array): void;
+  /** Records both on a tape, which has the array of values by slot; undefined where the expression has a kink. */
+  record(tape: Tape, env: (slot: number) => Slot): RecordedLaw | undefined;
+}
+
+/** Places on a tape. */
+export interface RecordedLaw {
+  readonly value: Slot;
+  /** By name, 0 where the expression does not have it. */
+  readonly gradient: readonly Slot[];
 }
 
 /**
@@ -44,6 +53,18 @@ export function compileLaw(e: Expression, by: readonly string[], slotOf: (name: 
         gradient.run(env);
         for (let k = 0; k < slopes.length; k++) out[slopes[k].i] = gradient.program.value[gradient.results[k]];
       } else for (let k = 0; k < slopes.length; k++) out[slopes[k].i] = plain[k](env);
+    },
+    record(tape, env) {
+      const held = (name: string): Slot => env(slotOf(name) ?? Number.NaN);
+      const value = recordExpression(tape, e, held);
+      if (value === undefined) return undefined;
+      const gradient = by.map(() => tape.constant(0));
+      for (const { i, of } of slopes) {
+        const slope = recordExpression(tape, of, held);
+        if (slope === undefined) return undefined;
+        gradient[i] = slope;
+      }
+      return { value, gradient };
     },
   };
 }

@@ -43,6 +43,7 @@ export function recordExpression(
         case "/":
           return tape.divide(a, b);
         case "^":
+          if (tape.known(b) === 2) return tape.multiply(a, a);
           return recordCall(tape, [a, b], ([x, y]) => ({ ...e, left: x, right: y }));
       }
       break;

@@ -1,3 +1,4 @@
+import type { Law } from "../expressions/law.js";
 import type { Span } from "../text/source.js";
 import type { Dimension } from "../units/dimension.js";
 import type { Env, Value } from "./value.js";
@@ -70,6 +71,8 @@ export interface Reaction {
   writeRate(env: Env, out: Float64Array, at: number): void;
   /** d rate / d concentration of each species, same Env; writes into `out` (length: species), no allocation. */
   gradient(env: Env, out: Float64Array): void;
+  /** Records rate and gradient on a tape that has the Env by slot; undefined where they have kinks, or where that is not known. */
+  readonly record?: Law["record"] | undefined;
   /** d rate / dT, with those of the constants given by their index; undefined where the rate does not follow the temperature. */
   readonly warmed?: ((env: Env, constants: ArrayLike<number>) => number) | undefined;
   /** Heat of one unit of reaction, J, negative where it is set free; undefined where the file does not say. Needs constants only. */

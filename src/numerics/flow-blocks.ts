@@ -1,4 +1,5 @@
 import { bicgstab } from "./bicgstab.js";
+import { factorKernels } from "./factor-kernels.js";
 import type { FlowRows } from "./flow-rows.js";
 import { FlowSweeps, stride } from "./flow-sweeps.js";
 import type { Iterated, IterativeGoal, IterativeMethod } from "./krylov.js";
@@ -28,6 +29,9 @@ export class FlowBlocks {
   /** Rows and columns of a block as the sweeps have it. */
   private readonly m: number;
   private readonly sweeps: FlowSweeps;
+  /** Of entries before the diagonal, as the sweeps have them: what elimination takes off. */
+  private readonly pair: Float64Array;
+  private readonly compiled: ReturnType<typeof loadFactors> | undefined;
   private readonly scratch: Float64Array;
   private readonly w: Float64Array;
   private readonly z: Float64Array;
@@ -35,20 +39,32 @@ export class FlowBlocks {
   private readonly x: Float64Array;
   private readonly iterate: IterativeMethod;
 
+  /** Bytes that blocks of n components take in a workspace. */
+  static room(rows: FlowRows, n: number): number {
+    const m = stride(n);
+    const [vector, blocks] = [rows.size * m, rows.size * m * m];
+    const floats = [...new Array<number>(9).fill(vector), blocks, blocks, rows.size * n * n, rows.pair.length];
+    return FlowSweeps.room(rows) + roomFor({ floats });
+  }
+
   /** @param n components of a block */
   constructor(
     private readonly rows: FlowRows,
     private readonly n: number,
+    workspace = new Workspace(FlowBlocks.room(rows, n)),
   ) {
     const m = stride(n);
     const [vector, blocks] = [rows.size * m, rows.size * m * m];
-    const room = roomFor({ floats: [...new Array<number>(9).fill(vector), blocks, blocks] });
-    const workspace = new Workspace(FlowSweeps.room(rows) + room);
     this.m = m;
     this.sweeps = new FlowSweeps(rows, n, workspace);
     this.sweep = workspace.floats(blocks);
     this.excess = workspace.floats(blocks);
-    this.diagonal = new Float64Array(rows.size * n * n);
+    this.diagonal = workspace.floats(rows.size * n * n);
+    this.pair = workspace.floats(this.sweeps.entriesBefore);
+    for (let p = 0, at = 0; p < rows.size; p++) {
+      for (let e = rows.start[p]; e < rows.middle[p]; e++) this.pair[at++] = rows.pair[e];
+    }
+    this.compiled = n <= 2 ? loadFactors(workspace) : undefined;
     this.scratch = new Float64Array(n * n + Math.max(m * m, n * n));
     const vectors = compiledVectors(vector, workspace);
     [this.w, this.z, this.rhs, this.x] = [vectors.make(), vectors.make(), vectors.make(), vectors.make()];
@@ -57,6 +73,13 @@ export class FlowBlocks {
 
   /** False where a block of the factors is singular. */
   factor(): boolean {
+    const { compiled, n, pair, diagonal, sweep, excess } = this;
+    if (compiled && this.through.size === 0) {
+      const { column, end } = this.sweeps.beforeAt;
+      const of = n === 1 ? compiled.factor1 : compiled.factor2;
+      const past = sweep.byteOffset + 8 * sweep.length;
+      return of(pair.byteOffset, column, end, diagonal.byteOffset, sweep.byteOffset, excess.byteOffset, past) === 1;
+    }
     const sum = this.scratch.subarray(this.n * this.n);
     for (let p = 0; p < this.rows.size; p++) if (!this.factorRow(p, sum)) return false;
     return true;
@@ -164,3 +187,5 @@ export class FlowBlocks {
     sweeps.foreWith(sweep, v, excess, w, z, out);
   }
 }
+
+const loadFactors = (workspace: Workspace) => workspace.load(factorKernels);

@@ -56,6 +56,15 @@ export class FlowSweeps {
     this.run = workspace.load(usual.get(m) ?? kernelsOf(m));
   }
 
+  /** Entries before the diagonal, and where they lie: of each the row that it is of, in bytes of a vector, and where rows end. */
+  get entriesBefore(): number {
+    return this.before.share.length;
+  }
+
+  get beforeAt(): { readonly column: number; readonly end: number } {
+    return { column: this.before.column.byteOffset, end: this.before.end.byteOffset };
+  }
+
   /** w_i = v_i + S_i (what comes from behind); w may be v. */
   back(sweep: Float64Array, v: Float64Array, w: Float64Array): void {
     const { share, column, end } = this.behind;

@@ -10,6 +10,14 @@ const Op = { Constant: 0, Input: 1, Add: 2, Subtract: 3, Multiply: 4, Divide: 5,
 /** A number of a recorded calculation, by its place in it. */
 export type Slot = number;
 
+/** One operation: on the slots a and b; a is the number of an input, `value` that of a constant. */
+export interface Step {
+  readonly does: "constant" | "input" | "add" | "subtract" | "multiply" | "divide";
+  readonly a: Slot;
+  readonly b: Slot;
+  readonly value: number;
+}
+
 interface Call {
   readonly of: SmoothFunction;
   readonly args: readonly Slot[];
@@ -142,6 +150,13 @@ export class Program {
       this.a[slot] = this.calls.length;
       this.calls.push({ of, args: Int32Array.from(args), x: new Float64Array(args.length) });
     }
+  }
+
+  /** The operations one after the other; undefined where one is a function that is called. */
+  line(): readonly Step[] | undefined {
+    if (this.calls.length > 0) return undefined;
+    const of = ["constant", "input", "add", "subtract", "multiply", "divide"] as const;
+    return Array.from(this.op, (op, i) => ({ does: of[op], a: this.a[i], b: this.b[i], value: this.value[i] }));
   }
 
   run(inputs: ArrayLike<number>): void {

@@ -2,6 +2,8 @@ import { Part } from "../compile/plant.js";
 import { FlowBlocks } from "../numerics/flow-blocks.js";
 import { flowRows } from "../numerics/flow-rows.js";
 import { solveSmall } from "../numerics/small-dense.js";
+import { roomFor, Workspace } from "../numerics/wasm/workspace.js";
+import { CircleLoops, writtenLaws } from "./circle-loops.js";
 import { type Circle, mixtures, startOf } from "./circle-start.js";
 import type { Conserved } from "./conserved.js";
 import type { Pass } from "./dispersion.js";
@@ -40,7 +42,10 @@ class CircleState implements System {
   readonly memory: Float64Array;
   readonly fall = 0.01;
   readonly x: Float64Array;
+  readonly vector: () => Float64Array;
   private readonly n: number;
+  /** The same loops compiled, where the laws are plain arithmetic and all that reacts are cells alike. */
+  private readonly loops: CircleLoops | undefined;
   private readonly blocks: FlowBlocks;
   /** By place: what of each dependent species no reaction changes. */
   private readonly fixed: Float64Array;
@@ -73,11 +78,18 @@ class CircleState implements System {
     this.n = n;
     this.size = r;
     this.length = count * r;
-    this.blocks = new FlowBlocks(rows, r);
-    this.memory = new Float64Array(count);
-    this.x = new Float64Array(count * r);
-    this.fixed = new Float64Array(count * d);
-    this.outside = new Float64Array(count * r);
+    const alike = this.cells === undefined && circle.bodies.size === 0;
+    const laws = alike ? writtenLaws(reactions.cell, conserved, this.fall) : undefined;
+    const vectors = new Array<number>(6).fill(count * r);
+    const room = roomFor({ floats: [...vectors, count, count * d] });
+    const workspace = new Workspace(FlowBlocks.room(rows, r) + room + (laws ? CircleLoops.room(rows, laws) : 0));
+    this.blocks = new FlowBlocks(rows, r, workspace);
+    this.vector = () => workspace.floats(count * r);
+    this.memory = workspace.floats(count);
+    this.x = this.vector();
+    this.outside = this.vector();
+    this.fixed = workspace.floats(count * d);
+    this.loops = laws && new CircleLoops(rows, laws, workspace, this.memory, this.outside, this.fixed);
     for (let p = 0; p < count; p++) {
       const node = order[p];
       if (circle.part[node] === Part.Cell) this.memory[p] = circle.tau[node];
@@ -117,12 +129,17 @@ class CircleState implements System {
   }
 
   residual(y: Float64Array, f: Float64Array): boolean {
+    if (this.loops) {
+      this.loops.residual(y, f);
+      return true;
+    }
     for (let p = 0; p < this.rows.size; p++) if (!this.miss(p, y, f)) return false;
     return true;
   }
 
   step(y: Float64Array, f: Float64Array, rate: number, relative: number, out: Float64Array): boolean {
-    for (let p = 0; p < this.rows.size; p++) if (!this.linearize(p, y, rate)) return false;
+    if (this.loops) this.loops.linearize(y, this.blocks.diagonal, rate);
+    else for (let p = 0; p < this.rows.size; p++) if (!this.linearize(p, y, rate)) return false;
     if (!this.blocks.factor()) return false;
     const { residual } = this.blocks.solve(f, out, { relative, most: mostSteps, rough: true });
     // A step that is not quite what was asked may still be a good one: the residual decides.
@@ -182,6 +199,10 @@ class CircleState implements System {
 
   /** Solves every node by itself, one after the other downstream, each with what the others are at that moment. */
   sweep(): void {
+    if (this.loops) {
+      this.loops.settle(this.x);
+      return;
+    }
     const { size: r, rows, mix, x, memory } = this;
     for (let p = 0; p < rows.size; p++) {
       this.enter(p, x);

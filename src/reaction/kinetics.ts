@@ -1,5 +1,7 @@
 import type { Reaction } from "../model/chemistry.js";
 import type { Env } from "../model/value.js";
+import type { Slot, Tape } from "../numerics/tape.js";
+import { type RecordedKinetics, recordKinetics } from "./recorded-kinetics.js";
 
 /**
  * A chemistry at fixed constants and temperature, in scaled concentrations y = c / scale, so that one tolerance suits all
@@ -19,6 +21,8 @@ export interface Kinetics {
   production(y: ArrayLike<number>, at: number, out: Float64Array, to: number): void;
   /** Writes d production_i / d y_j at y[at ...] into out[to + i * size + j]. */
   jacobian(y: ArrayLike<number>, at: number, out: Float64Array, to: number): void;
+  /** Records both on a tape, where they are plain arithmetic of the y (none below zero): for loops over many cells. */
+  record?(tape: Tape, y: readonly Slot[]): RecordedKinetics | undefined;
 }
 
 /** Kinetics of a chemistry by itself. */
@@ -105,6 +109,7 @@ export function bindKinetics(
   };
 
   const limited = depletion === "limited";
+  const plain = !thermal && reactions.every(({ helped }) => !helped);
 
   return {
     size: n,
@@ -113,6 +118,9 @@ export function bindKinetics(
     spends: Uint8Array.from({ length: species }, (_, i) => (reactions.some((r) => r.persists[i] === 1) ? 1 : 0)),
     scale,
     numbers: reactions.map(({ numbers }) => numbers.map((x, i) => x / scale[i])),
+    ...(plain
+      ? { record: (tape: Tape, y: readonly Slot[]) => recordKinetics(reactions, constants, scale, tape, y) }
+      : {}),
     production(y, at, out, to) {
       load(y, at, 0);
       for (let i = 0; i < n; i++) out[to + i] = 0;

@@ -16,6 +16,8 @@ export interface System {
    * that cannot be had.
    */
   step(y: Float64Array, f: Float64Array, rate: number, relative: number, out: Float64Array): boolean;
+  /** Makes a vector of `length`, where they have a place of their own. */
+  readonly vector?: () => Float64Array;
   /** Told the norm of F before every step. */
   readonly watch?: ((norm: number) => void) | undefined;
 }
@@ -116,8 +118,7 @@ interface Workspace {
   readonly fTrial: Float64Array;
 }
 
-function workspace({ length }: System): Workspace {
-  const vector = (): Float64Array => new Float64Array(length);
+function workspace({ length, vector = () => new Float64Array(length) }: System): Workspace {
   return { f: vector(), step: vector(), trial: vector(), fTrial: vector() };
 }
 

@@ -122,7 +122,7 @@ function bindReaction(
   warm: readonly string[],
   slotOf: (name: string) => number | undefined,
 ): Reaction {
-  const { value, write, gradient } = compileLaw(w.rate, species, slotOf);
+  const { value, write, gradient, record } = compileLaw(w.rate, species, slotOf);
   return {
     text: w.text,
     at: w.at,
@@ -131,6 +131,7 @@ function bindReaction(
     rate: value,
     writeRate: write,
     gradient,
+    record,
     warmed: withTemperature(w.rate, warm, constants, slotOf),
     heat: w.heat,
   };
