@@ -53,7 +53,10 @@ try {
   await writeManual();
   rmSync(dist, { recursive: true, force: true });
   await Promise.all([
-    buildProgram(root, dist, version).then(() => keepCompiled(root, dist, commands)),
+    buildProgram(root, dist, version)
+      .then(() => keepCompiled(root, dist, commands))
+      // The program runs without, only more slowly.
+      .catch((e) => (e.errors ? Promise.reject(e) : console.error(`build: no compiled code is kept: ${e.message}`))),
     bundle("src/index.ts", "index", { packages: "external" }),
     types(),
   ]);

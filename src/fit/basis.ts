@@ -11,7 +11,9 @@ export function orthonormalBasis(columns: readonly Float64Array[], from: readonl
       }
     }
     const left = norm(q);
-    if (left > 1e-6 * before) basis.push(q.map((v) => v / left));
+    if (!(left > 1e-6 * before)) continue;
+    for (let i = 0; i < q.length; i++) q[i] /= left;
+    basis.push(q);
   }
   return basis;
 }

@@ -168,15 +168,17 @@ export class Condenser {
   }
 }
 
-/** Lagrange's polynomials over the times of ties, by barycentric weights (Berrut & Trefethen, SIAM Review 46 (2004) 501-517). */
+/** Lagrange's polynomials over the times of ties. */
 class Lagrange {
   private readonly places = new Float64Array(nodes);
   private readonly weights = new Float64Array(nodes);
   private readonly values = new Float64Array(nodes);
+  private readonly perSpan: number;
 
   constructor(ties: Int32Array, time: Float64Array) {
     for (let k = 0; k < nodes; k++) this.places[k] = time[ties[k]];
     const span = this.places[nodes - 1] - this.places[0];
+    this.perSpan = 1 / span;
     for (let k = 0; k < nodes; k++) {
       let product = 1;
       for (let j = 0; j < nodes; j++) if (j !== k) product *= (this.places[k] - this.places[j]) / span;
@@ -186,19 +188,18 @@ class Lagrange {
 
   /** By tie; good until the next. */
   at(t: number): Float64Array {
-    const { values, weights, places } = this;
-    let sum = 0;
+    const { values, weights, places, perSpan } = this;
+    // Products from both ends: no quotient, which costs more than all of them.
+    let product = 1;
     for (let k = 0; k < nodes; k++) {
-      const d = t - places[k];
-      if (d === 0) {
-        values.fill(0);
-        values[k] = 1;
-        return values;
-      }
-      values[k] = weights[k] / d;
-      sum += values[k];
+      values[k] = weights[k] * product;
+      product *= (t - places[k]) * perSpan;
     }
-    for (let k = 0; k < nodes; k++) values[k] /= sum;
+    product = 1;
+    for (let k = nodes - 1; k >= 0; k--) {
+      values[k] *= product;
+      product *= (t - places[k]) * perSpan;
+    }
     return values;
   }
 }

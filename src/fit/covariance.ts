@@ -1,4 +1,5 @@
 import { entryOfR, factorColumns, type Qr } from "../numerics/qr.js";
+import { dot, norm } from "./basis.js";
 
 /** Linear theory of a least-squares optimum. */
 export interface LinearTheory {
@@ -19,20 +20,28 @@ export interface LinearTheory {
  * Linear Models, 1971, section 5.4).
  * @param columns    Jacobian by columns, all of one length
  * @param nothing    length up to which a column is rounding, column by column; default 0
+ * @param basis      orthonormal columns that span them: what is factored are then their shares in these, as many rows as there are
  * @param tolerance  a column that others reproduce to this fraction of its length counts as dependent; it must lie above the
  *                   error of the differences that made the columns
  */
 export function linearTheory(
   columns: readonly Float64Array[],
   nothing: ArrayLike<number> = [],
+  basis?: readonly Float64Array[],
   tolerance = 1e-6,
 ): LinearTheory {
   const n = columns.length;
-  const m = columns[0]?.length ?? 0;
-  const length = Float64Array.from(columns, (c, j) => (norm(c) > (nothing[j] ?? 0) ? norm(c) : 0));
+  const m = basis ? basis.length : (columns[0]?.length ?? 0);
+  const length = Float64Array.from(columns, (c, j) => {
+    const whole = norm(c);
+    return whole > (nothing[j] ?? 0) ? whole : 0;
+  });
   const scaled = new Float64Array(m * n);
-  for (let j = 0; j < n; j++)
-    if (length[j] > 0) for (let i = 0; i < m; i++) scaled[j * m + i] = columns[j][i] / length[j];
+  for (let j = 0; j < n; j++) {
+    if (length[j] === 0) continue;
+    if (basis) for (let i = 0; i < m; i++) scaled[j * m + i] = dot(basis[i], columns[j]) / length[j];
+    else for (let i = 0; i < m; i++) scaled[j * m + i] = columns[j][i] / length[j];
+  }
   const qr = factorColumns(scaled, m, n, tolerance);
   const unscale = length.map((l) => (l > 0 ? 1 / l : 1));
   const blind = blindVectors(qr, n);
@@ -112,5 +121,3 @@ function answer(
   }
   return z;
 }
-
-const norm = (v: Float64Array): number => Math.sqrt(v.reduce((s, x) => s + x * x, 0));

@@ -3,7 +3,7 @@ import { type Autocorrelation, autocorrelationOf } from "./autocorrelation.js";
 import { orthonormalBasis } from "./basis.js";
 import { type LinearTheory, linearTheory } from "./covariance.js";
 import { hangingTogether } from "./hanging-together.js";
-import { constantSlope, fullJacobian } from "./jacobian.js";
+import { constantSlope, fullBasis, fullJacobian } from "./jacobian.js";
 import type { Estimate, FittedParameter, Matrix, Nuisance } from "./result.js";
 import { freedomOf, type Settled } from "./settle.js";
 
@@ -43,14 +43,16 @@ export function estimatesOf({ problem, x, at }: Settled): Estimates {
   const rounding = 1e-6 * signalOf(problem);
   const nothing = columns.map((_, j) => (j < x.length ? rounding : 0));
   const kept = columns.flatMap((_, j) => (j < n || j >= x.length ? [j] : []));
+  const own = kept.map((j) => columns[j]);
+  const basis = kept.length < columns.length ? orthonormalBasis(own) : fullBasis(problem, x, at);
   const plain = linearTheory(
-    kept.map((j) => columns[j]),
+    own,
     kept.map((j) => nothing[j]),
+    basis,
   );
   const whole = setup.held.length > 0 && x.length > n ? linearTheory(columns, nothing) : plain;
   const freedom = freedomOf(problem);
   const variance = freedom > 0 ? at.ofAll / freedom : Number.NaN;
-  const basis = orthonormalBasis(kept.map((j) => columns[j]));
   // What a calibration leaves open bends whole curves: it is carried by itself, and is no reason to call readings correlated.
   const shifts = calibrationShifts(problem);
   const wider = orthonormalBasis(shifts, basis);

@@ -9,11 +9,13 @@ import { collector, hasErrors, type Report } from "../problems/report.js";
 import { trialOn } from "../resolve/trial-on.js";
 import { untraceable } from "../simulate/trace.js";
 import { formatQuantity } from "../units/format.js";
+import { dot } from "./basis.js";
 import { condense } from "./condense.js";
 import { criteriaOf } from "./criteria.js";
 import { estimatesOf } from "./estimates.js";
 import { findingsOf, flatLines } from "./findings.js";
 import type { ForwardModel } from "./forward.js";
+import { fullBasis } from "./jacobian.js";
 import { modelOf } from "./model-of.js";
 import { countOf, thinned } from "./observations.js";
 import { prepare } from "./prepare.js";
@@ -21,7 +23,7 @@ import { type Problem as LinearProblem, problemWith } from "./problem.js";
 import { notLinear, profilesOf } from "./profiles.js";
 import { cannotFollow } from "./reacting-model.js";
 import type { Fit, FittedParameter, FittedReading, FoundOptimum } from "./result.js";
-import { descend, type Effort, fully, type SearchResult, searchFrom, type Watch } from "./search.js";
+import { descend, type Effort, fully, type Optimum, type SearchResult, searchFrom, type Watch } from "./search.js";
 import { type Settled, settle } from "./settle.js";
 import { type Setup, valuesAt } from "./setup.js";
 import type { StartPlan } from "./starts.js";
@@ -139,10 +141,26 @@ function search(setup: Setup, problem: LinearProblem, file: Float64Array, plan: 
   const margin = Math.ceil((2 * setup.observations) / coarse.observations);
   const close = condense(problem, found.best.x, margin);
   const near = close ? descend(close, found.best.x, fully, watch).x : found.best.x;
-  const best = { ...descend(problem, near, close ? atLast : fully, watch), reached: found.best.reached };
   const others = found.optima.slice(1).map((o) => ({ ...o, sum: problem.evaluate(o.x)?.ofAll ?? Infinity }));
+  const stood = close ? standing(problem, near) : undefined;
+  const best = { ...(stood ?? descend(problem, near, close ? atLast : fully, watch)), reached: found.best.reached };
   const stands = close && { problem: close, standsFor: problem };
   return { best, optima: [best, ...others], cancelled: watch.cancelled(), close: stands };
+}
+
+/** Squared step in standard errors up to which a point is where all readings have their optimum. */
+const arrived = 1e-8;
+
+/**
+ * A point as the optimum of a problem, where one Jacobian of all its readings, which the errors need anyway, has it that the next step
+ * would be nothing; undefined where it would not.
+ */
+function standing(problem: LinearProblem, x: Float64Array): Optimum | undefined {
+  const at = problem.evaluate(x);
+  if (!at) return undefined;
+  const promised = fullBasis(problem, x, at).reduce((sum, q) => sum + dot(q, at.residuals) ** 2, 0);
+  const variance = at.ofAll / at.residuals.length;
+  return promised <= arrived * variance ? { x, sum: at.ofAll, converged: true, reached: 1 } : undefined;
 }
 
 /** Nothing to search: the only point there is. */

@@ -1,3 +1,4 @@
+import { orthonormalBasis } from "./basis.js";
 import type { Direction } from "./forward.js";
 import type { Held } from "./held.js";
 import type { Evaluation, Problem } from "./problem.js";
@@ -35,10 +36,11 @@ export function projectedJacobian(problem: Problem, x: Float64Array, at: Evaluat
 /**
  * The full Jacobian of the weighted fitted curve at a point, by columns: first the coordinates of `x` with the linear terms
  * held, then the linear terms. Rows: observations, then priors.
- * @returns columns, each as long as the residuals
+ * @returns columns, each as long as the residuals; the problem keeps them, so that asking twice costs once
  */
-export function fullJacobian(problem: Problem, x: Float64Array, at: Evaluation): Float64Array[] {
-  const { setup, projectors, priors } = problem;
+export function fullJacobian(problem: Problem, x: Float64Array, at: Evaluation): readonly Float64Array[] {
+  const { setup, projectors, priors, last } = problem;
+  if (last.at === at && last.columns) return last.columns;
   const rows = at.residuals.length;
   const columns: Float64Array[] = [];
   const slopes = allCurveSlopes(setup, x, at);
@@ -52,13 +54,27 @@ export function fullJacobian(problem: Problem, x: Float64Array, at: Evaluation):
     columns.push(c);
   }
   for (const [b, projector] of projectors.entries()) {
-    for (const part of projector.columns(at.curves[b])) {
-      const c = new Float64Array(rows);
-      c.set(part, setup.blocks[b].from);
-      columns.push(c);
-    }
+    const own = projector.columns(at.curves[b]);
+    // Of the only reading a column is the whole.
+    if (projectors.length === 1 && priors.length === 0) columns.push(...own);
+    else
+      for (const part of own) {
+        const c = new Float64Array(rows);
+        c.set(part, setup.blocks[b].from);
+        columns.push(c);
+      }
   }
+  last.at = at;
+  last.columns = columns;
+  last.basis = undefined;
   return columns;
+}
+
+/** Orthonormal columns that span those of the full Jacobian at a point. */
+export function fullBasis(problem: Problem, x: Float64Array, at: Evaluation): readonly Float64Array[] {
+  const columns = fullJacobian(problem, x, at);
+  problem.last.basis ??= orthonormalBasis(columns);
+  return problem.last.basis;
 }
 
 /**

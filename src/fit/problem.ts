@@ -34,6 +34,13 @@ export interface Problem {
   readonly priors: readonly Prior[];
   /** Linear terms of all blocks. */
   readonly linear: number;
+  /** The last full Jacobian, and where it was taken: a fit ends where its errors begin. */
+  readonly last: {
+    at?: Evaluation;
+    columns?: readonly Float64Array[];
+    /** Orthonormal, of all the columns. */
+    basis?: readonly Float64Array[] | undefined;
+  };
   /** undefined where the point makes no vessel. */
   evaluate(x: Float64Array): Evaluation | undefined;
 }
@@ -46,16 +53,16 @@ export function problemWith(setup: Setup, weight: Float64Array, priors: readonly
   const projectors = setup.blocks.map((b) => projectorFor(b, weight));
   const linear = projectors.reduce((n, p) => n + p.terms, 0);
   let lastPoint: Float64Array | undefined;
-  let last: Evaluation | undefined;
+  let found: Evaluation | undefined;
   const evaluate = (x: Float64Array): Evaluation | undefined => {
-    if (lastPoint && samePoint(lastPoint, x)) return last;
+    if (lastPoint && samePoint(lastPoint, x)) return found;
     lastPoint = Float64Array.from(x);
     const facts = factsAt(setup, x);
     const curves = curvesOf(setup, facts);
-    last = curves && withTerms(setup, projectors, priors, facts, curves, x);
-    return last;
+    found = curves && withTerms(setup, projectors, priors, facts, curves, x);
+    return found;
   };
-  return { setup, weight, projectors, priors, linear, evaluate };
+  return { setup, weight, projectors, priors, linear, last: {}, evaluate };
 }
 
 function withTerms(

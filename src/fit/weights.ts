@@ -50,8 +50,17 @@ export function weightsFor(setup: Setup, fitted?: Evaluation & { readonly before
     moving ||= relative > 0 || counts !== undefined || (!noise && spread !== undefined);
     const curve = fitted ? fittedCurve(b.time, b.origin, fitted, k) : b.measured;
     const least = 1e-3 * relative * peakOf(curve);
-    const values = Float64Array.from(b.measured);
-    const information = new Float64Array(b.time.length).fill(1);
+    const values = b.censored ? Float64Array.from(b.measured) : b.measured;
+    const information = new Float64Array(b.censored ? b.time.length : 0).fill(1);
+    if (!noise && !b.censored) {
+      const sigma = spread ? spread[b.group] : b.unit.factor;
+      weight.fill(1 / sigma, b.from, b.from + b.time.length);
+      sigmas.fill(sigma, b.from, b.from + b.time.length);
+      logVariances += b.time.length * 2 * Math.log(sigma / b.unit.factor);
+      if (b.hangsTogether) logVariances += logLinks(b);
+      stands.push(b);
+      continue;
+    }
     for (let i = 0; i < b.time.length; i++) {
       const sigma = noise
         ? Math.max(Math.sqrt(floor ** 2 + (relative * curve[i]) ** 2 + (counts?.(curve[i]) ?? 0)), least)
@@ -72,7 +81,7 @@ export function weightsFor(setup: Setup, fitted?: Evaluation & { readonly before
       weight[b.from + i] = 1 / sigma;
       logVariances += 2 * Math.log(sigma / b.unit.factor);
     }
-    if (b.hangsTogether) for (const f of links(chainOf(b), b.hangsTogether)) logVariances += Math.log(1 - f * f);
+    if (b.hangsTogether) logVariances += logLinks(b);
     stands.push(b.censored ? { ...b, measured: values, information } : b);
   }
   const times = setup.blocks.filter((b) => b.declared.correlated === "fitted").length;
@@ -87,6 +96,10 @@ export function weightsFor(setup: Setup, fitted?: Evaluation & { readonly before
     ...(anyCensored ? { blocks: stands } : {}),
   };
 }
+
+/** What hanging together takes from the sum of ln sigma^2. */
+const logLinks = (b: Block): number =>
+  links(chainOf(b), b.hangsTogether ?? 0).reduce((sum, f) => sum + Math.log(1 - f * f), 0);
 
 /** Standard deviation of each group without `noise:`, SI: of its residuals, or of its data before there are any. */
 function groupSpreads(

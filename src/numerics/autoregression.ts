@@ -102,7 +102,8 @@ class Restricted {
     this.times = chains.map(() => 0);
     const inChain = new Uint8Array(residuals.length);
     for (const { rows } of chains) for (let i = 0; i < rows.length; i++) inChain[rows[i]] = 1;
-    const rest = Array.from(residuals.keys()).filter((i) => inChain[i] === 0);
+    const rest: number[] = [];
+    for (let i = 0; i < inChain.length; i++) if (inChain[i] === 0) rest.push(i);
     this.sums = chains.map((c) => sumsByGap(c, [residuals, ...basis]));
     this.alone = this.walked({ rows: rest, gaps: new Float64Array(rest.length) }, 0);
     this.shares = chains.map((_, c) => this.share(c, 0));
@@ -117,9 +118,7 @@ class Restricted {
   improve(c: number): void {
     const { gaps } = this.chains[c];
     if (gaps.length < fewest) return;
-    const sorted = gaps.slice(1).sort();
-    const typical = sorted[sorted.length >> 1] || sorted.find((g) => g > 0) || 0;
-    const span = sorted.reduce((s, g) => s + g, 0);
+    const { typical, span } = this.sums[c] ? gapsOfSorts(this.sums[c]) : gapsOneByOne(gaps);
     if (!(typical > 0)) return;
     const [low, high] = [Math.log(typical / 4), Math.log(Math.max(span / 2, typical))];
     const at = (u: number): number => this.value(c, this.share(c, Math.exp(u)));
@@ -190,6 +189,26 @@ class Restricted {
     for (let k = 0; k < p; k++) for (let l = 0; l < k; l++) between[l * p + k] = between[k * p + l];
     return { square, logDeterminant, along, between };
   }
+}
+
+/** The middle one of the gaps, or the least that is none, and all of them together. */
+function gapsOneByOne(gaps: Float64Array): { typical: number; span: number } {
+  const sorted = gaps.slice(1).sort();
+  const typical = sorted[sorted.length >> 1] || sorted.find((g) => g > 0) || 0;
+  return { typical, span: sorted.reduce((s, g) => s + g, 0) };
+}
+
+/** The same where they are of few sorts. */
+function gapsOfSorts(sums: readonly GapSums[]): { typical: number; span: number } {
+  const sorts = sums.slice(1).sort((a, b) => a.gap - b.gap);
+  const half = sorts.reduce((all, s) => all + s.count, 0) >> 1;
+  let passed = 0;
+  const middle = sorts.find((s) => {
+    passed += s.count;
+    return passed > half;
+  });
+  const typical = middle?.gap || sorts.find((s) => s.gap > 0)?.gap || 0;
+  return { typical, span: sorts.reduce((all, s) => all + s.gap * s.count, 0) };
 }
 
 /** Members below which a chain says nothing of how it hangs together. */

@@ -53,25 +53,42 @@ export function sumsByGap({ rows, gaps }: Gapped, vectors: readonly Float64Array
     if (all.length > mostGaps) return undefined;
     groups[i] = group;
   }
-  const now = new Float64Array(m);
-  const then = new Float64Array(m);
-  for (let i = 0; i < gaps.length; i++) {
-    const sums = all[groups[i]];
-    sums.count++;
-    for (let k = 0; k < m; k++) {
-      now[k] = vectors[k][rows[i]];
-      then[k] = i === 0 ? 0 : vectors[k][rows[i - 1]];
-    }
-    const { own, across, before } = sums;
-    for (let k = 0; k < m; k++) {
-      for (let l = 0; l <= k; l++) {
-        own[k * m + l] += now[k] * now[l];
-        across[k * m + l] += now[k] * then[l] + then[k] * now[l];
-        before[k * m + l] += then[k] * then[l];
-      }
-    }
-  }
+  for (const [k, x] of vectors.entries())
+    for (let l = 0; l <= k; l++) addProducts(rows, groups, all, x, vectors[l], k * m + l);
+  for (const group of groups) all[group].count++;
   return all;
+}
+
+/** Adds the products of two vectors, or of one with itself, in place `at` of the sums. */
+function addProducts(
+  rows: ArrayLike<number>,
+  groups: Int32Array,
+  all: readonly GapSums[],
+  x: Float64Array,
+  y: Float64Array,
+  at: number,
+): void {
+  if (groups.length === 0) return;
+  let group = groups[0];
+  let [own, across, before, lastX, lastY] = [0, 0, 0, 0, 0];
+  for (let i = 0; i <= groups.length; i++) {
+    if (i === groups.length || groups[i] !== group) {
+      const sums = all[group];
+      sums.own[at] += own;
+      sums.across[at] += across;
+      sums.before[at] += before;
+      if (i === groups.length) return;
+      own = across = before = 0;
+      group = groups[i];
+    }
+    const nowX = x[rows[i]];
+    const nowY = y[rows[i]];
+    own += nowX * nowY;
+    across += nowX * lastY + lastX * nowY;
+    before += lastX * lastY;
+    lastX = nowX;
+    lastY = nowY;
+  }
 }
 
 /** What a chain adds at a correlation time; 0: members do not hang together. */
