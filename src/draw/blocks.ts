@@ -70,7 +70,7 @@ export function bodyBlock(
   const own = caption(words, 0, -top - captionGap - extent(words).height, "middle");
   const edge = stack > half.height ? stack + 3 : half.height; // what hangs keeps clear of the streams at the sides
   const lower = hangingRow(body.name, edge, sheet, scale, hanging);
-  const side = Math.max(half.width, own.box.width / 2, lower.width / 2);
+  const side = Math.max(half.width, own.box.width / 2);
   return {
     name: body.name,
     role: body.role,
@@ -78,7 +78,12 @@ export function bodyBlock(
     bodies: [{ body, box: { x: -half.width, y: -half.height, ...size } }, ...lower.bodies],
     captions: [own, ...lower.captions],
     arcs: lower.arcs.map((a) => (a.top === edge ? { ...a, top: half.height } : a)),
-    reach: { left: side, right: side, above: -own.box.y, below: Math.max(top, edge + lower.height) },
+    reach: {
+      left: Math.max(side, lower.left),
+      right: Math.max(side, lower.right),
+      above: -own.box.y,
+      below: Math.max(top, edge + lower.height),
+    },
   };
 }
 
@@ -131,7 +136,9 @@ export const labelWords = ({ label, accent, fitted }: SheetStream): Words => ({
 });
 
 interface Row {
-  readonly width: number;
+  /** How far it reaches from the middle of what it hangs on, px. */
+  readonly left: number;
+  readonly right: number;
   readonly height: number;
   readonly bodies: readonly Placed[];
   readonly captions: readonly Caption[];
@@ -156,18 +163,21 @@ function hangingRow(
     const flow = extent([{ words: stream.label, style: "plain" }]).width;
     // the name stands below a body, beside the arcs of what hangs further down
     const name2 =
-      lower.width > 0
+      lower.right > 0
         ? caption(words, size.width / 2 + 6, size.height / 2 - under.height / 2)
         : caption(words, 0, size.height + captionGap - 2, "middle");
-    const width = Math.max(size.width, 2 * (14 + flow), lower.width, 2 * (name2.box.x + name2.box.width));
-    const height = arcRoom + (lower.width > 0 ? size.height + lower.height : size.height + captionGap + under.height);
-    return { stream, body, size, lower, name2, width, height };
+    const left = Math.max(size.width / 2, 14, lower.left, -name2.box.x);
+    const right = Math.max(size.width / 2, 14 + flow, lower.right, name2.box.x + name2.box.width);
+    const height = arcRoom + (lower.right > 0 ? size.height + lower.height : size.height + captionGap + under.height);
+    return { stream, body, size, lower, name2, left, right, height };
   });
-  const width = cells.reduce((sum, cell) => sum + cell.width, 0) + Math.max(0, cells.length - 1) * sideBySide;
+  const width = cells.reduce((sum, c) => sum + c.left + c.right, 0) + Math.max(0, cells.length - 1) * sideBySide;
   const row = { bodies: [] as Placed[], captions: [] as Caption[], arcs: [] as Arcs[] };
-  let left = -width / 2;
-  for (const { stream, body, size, lower, name2, width: cell } of cells) {
-    const x = left + cell / 2;
+  // one alone hangs straight below
+  const start = cells.length === 1 ? cells[0].left : width / 2;
+  let edgeLeft = -start;
+  for (const { stream, body, size, lower, name2, left, right } of cells) {
+    const x = edgeLeft + left;
     const y = edge + arcRoom;
     row.bodies.push({ body, box: { x: x - size.width / 2, y, ...size } });
     row.arcs.push({ stream, x, top: edge, bottom: y });
@@ -176,7 +186,7 @@ function hangingRow(
     row.bodies.push(...lower.bodies.map((p) => ({ ...p, box: { ...p.box, x: p.box.x + x, y: p.box.y + y } })));
     row.captions.push(...lower.captions.map((c) => moved(c, x, y)));
     row.arcs.push(...lower.arcs.map((a) => ({ ...a, x: a.x + x, top: a.top + y, bottom: a.bottom + y })));
-    left += cell + sideBySide;
+    edgeLeft += left + right + sideBySide;
   }
-  return { width, height: Math.max(0, ...cells.map((cell) => cell.height)), ...row };
+  return { left: start, right: width - start, height: Math.max(0, ...cells.map((cell) => cell.height)), ...row };
 }

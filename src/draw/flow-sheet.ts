@@ -146,15 +146,16 @@ function label(s: ShownStream, unit: SheetUnit, note: string | undefined): strin
   return (inside.length === 0 ? flow : `${flow} (${inside.join(", ")})`) + through;
 }
 
-/** A share in the file's spelling, with its value where that is a name or an expression: "30 %", "bypass 10 %". */
+/** What the file writes, in its spelling: "30 %", "renewal", "bypass 10 %". What it computes from names is told by its value alone. */
 function writtenAs(s: ShownStream, flow: string): string {
   const written = typeset(s.written.trim());
   if (plain(s) || written === flow) return "";
-  const short = written.length > 24 ? "" : written;
-  if (s.share === undefined || /^[\d.,]+\s*%$/.test(written)) return short;
+  const isName = /^[A-Za-z][\w.-]*$/.test(written) && written.length <= 24;
+  const isNumber = /^[\d.,]+\s?\S*$/.test(written);
+  if (isNumber || (isName && s.share === undefined)) return written;
+  if (s.share === undefined) return "";
   const share = amount(s.share, { name: "%", factor: 0.01 });
-  if (short === "") return share;
-  return /^[\w.-]+$/.test(short) && !/^[\d.]+$/.test(short) ? `${short} ${share}` : `${short} = ${share}`;
+  return isName ? `${written} ${share}` : share;
 }
 
 /** Which of a row of bodies it goes to, or which inlet it takes, where that is not the first or only one. */

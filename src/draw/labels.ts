@@ -27,20 +27,28 @@ export function occupyRibbon(clutter: Clutter, spine: Spine, width: number): voi
 
 /**
  * Finds a free place for each label in turn and marks it as taken: along the ribbon from its start, above it or below,
- * beside it where it runs upright; then anywhere near, with a leader; at last below everything (`floor`).
+ * beside it where it runs upright; then anywhere near, with a leader that crosses no words; at last below everything (`floor`).
+ * @param words where words stand already
  */
-export function placeLabels(wishes: readonly LabelWish[], clutter: Clutter, inside: Box): readonly PlacedLabel[] {
+export function placeLabels(
+  wishes: readonly LabelWish[],
+  clutter: Clutter,
+  words: Clutter,
+  inside: Box,
+): readonly PlacedLabel[] {
   let floor = inside.y + inside.height + 6;
   return wishes.map((wish) => {
-    const found = alongRibbon(wish, clutter, inside) ?? nearby(wish, clutter, inside);
+    const found = alongRibbon(wish, clutter, inside) ?? nearby(wish, clutter, words, inside);
     if (found) {
       clutter.add(found.caption.box);
+      words.add(found.caption.box);
       return found;
     }
     const from = wish.spine.start;
     const last = caption([wish.words], from.x, floor);
     floor += 16;
     clutter.add(last.box);
+    words.add(last.box);
     return { caption: last, leader: { from, to: { x: last.box.x, y: last.box.y } } };
   });
 }
@@ -90,7 +98,12 @@ function spots(
   return [caption([words], x, p.y - away - height), caption([words], x, p.y + away)];
 }
 
-function nearby({ words, spine, width }: LabelWish, clutter: Clutter, inside: Box): PlacedLabel | undefined {
+function nearby(
+  { words, spine, width }: LabelWish,
+  clutter: Clutter,
+  others: Clutter,
+  inside: Box,
+): PlacedLabel | undefined {
   const all = samples(spine, 8);
   const target = all[Math.min(3, all.length - 1)];
   const size = extent([words]);
@@ -104,10 +117,18 @@ function nearby({ words, spine, width }: LabelWish, clutter: Clutter, inside: Bo
         x: Math.min(Math.max(target.x, spot.box.x), spot.box.x + spot.box.width),
         y: Math.min(Math.max(target.y, spot.box.y), spot.box.y + spot.box.height),
       };
-      return { caption: spot, leader: { from: target, to } };
+      if (!crossed(target, to, others)) return { caption: spot, leader: { from: target, to } };
     }
   }
   return undefined;
+}
+
+/** Does a line run through words? */
+function crossed(from: Point, to: Point, words: Clutter): boolean {
+  const steps = Math.ceil(Math.hypot(to.x - from.x, to.y - from.y) / 3);
+  return Array.from({ length: steps + 1 }, (_, k) => k / Math.max(1, steps)).some((t) =>
+    words.hits({ x: from.x + t * (to.x - from.x) - 1, y: from.y + t * (to.y - from.y) - 1, width: 2, height: 2 }),
+  );
 }
 
 function free(box: Box, clutter: Clutter, inside: Box): boolean {

@@ -46,14 +46,17 @@ export function layOut(sheet: FlowSheet): Layout {
   const arcs = blocks.flatMap((b) => b.arcs);
   const marks = blocks.flatMap((b) => marksOf(b.bodies));
   const tall = union([vessel, ...boxesOf(dead)]);
-  const room = { x: vessel.x, y: tall.y - 8, width: vessel.width, height: tall.height + 16 };
+  const room = { x: vessel.x + 5, y: tall.y - 8, width: vessel.width - 10, height: tall.height + 16 };
   const clutter = new Clutter();
   for (const box of boxesOf({ bodies, captions })) clutter.add(box);
   for (const a of arcs) clutter.add({ x: a.x - 10, y: a.top, width: 20, height: a.bottom - a.top });
   for (const { title } of parts) clutter.add(title.box);
+  for (const edge of parts.flatMap((p) => edgesOf(p.box))) clutter.add(edge);
   for (const m of marks) clutter.add({ x: m.x - 7, y: m.y - 9, width: 14, height: 18 });
   for (const r of ribbons) occupyRibbon(clutter, r.spine, r.trip.width);
-  const labels = placeLabels(wishesOf(ribbons), clutter, room);
+  const words = new Clutter();
+  for (const { box } of [...captions, ...parts.map((p) => p.title)]) words.add(box);
+  const labels = placeLabels(wishesOf(ribbons), clutter, words, room);
   const all = union([room, ...labels.map((l) => l.caption.box), ...boxesOf(dead)]);
   const right = Math.max(vessel.x + vessel.width, all.x + all.width + 8);
   const frame = { x: vessel.x, y: all.y - 6, width: right - vessel.x, height: all.height + 12 };
@@ -77,6 +80,13 @@ export function layOut(sheet: FlowSheet): Layout {
     bounds,
   };
 }
+
+const edgesOf = ({ x, y, width, height }: Box): readonly Box[] => [
+  { x, y: y - 1, width, height: 2 },
+  { x, y: y + height - 1, width, height: 2 },
+  { x: x - 2, y, width: 4, height },
+  { x: x + width - 2, y, width: 4, height },
+];
 
 const passing = ({ trip: { stream, width }, spine }: Ribbon): Passing => ({
   from: stream.from,

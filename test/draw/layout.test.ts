@@ -36,6 +36,17 @@ function faults(layout: Layout): string[] {
       }
     }
   }
+  for (const { leader, caption: own } of layout.labels) {
+    if (!leader) continue;
+    for (const w of words) {
+      const through = Array.from({ length: 60 }, (_, k) => (k + 0.5) / 60).some((t) => {
+        const x = leader.from.x + t * (leader.to.x - leader.from.x);
+        const y = leader.from.y + t * (leader.to.y - leader.from.y);
+        return overlaps(shrunk(w.box), { x, y, width: 0.1, height: 0.1 });
+      });
+      if (through && w.box !== own.box) found.push(`the leader of ${own.lines[0].words} runs through ${w.is}`);
+    }
+  }
   return found;
 }
 
