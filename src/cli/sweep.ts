@@ -17,7 +17,7 @@ import { inputsOf } from "../study/inputs.js";
 import type { Operation } from "../study/operate.js";
 import { operationOf } from "../study/operation.js";
 import { rowsFor, sourcesOf } from "../study/sources.js";
-import { changes } from "../transient/inputs.js";
+import { changes } from "../transient/course-line.js";
 import { formatNumber } from "../units/format.js";
 import type { Context } from "./context.js";
 import { InputError, type Outcome, UsageError } from "./outcome.js";

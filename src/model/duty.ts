@@ -11,6 +11,8 @@ export interface Duty {
   readonly chemistry: Chemistry | undefined;
   /** Flows of this duty by feed name. */
   readonly flows: ReadonlyMap<string, Placed>;
+  /** Those that change in time, by feed; `flows` has what they are before. */
+  readonly flowCourses?: ReadonlyMap<string, FeedCourse>;
   /** Constants of the chemistry set otherwise here. */
   readonly with: ReadonlyMap<string, Placed>;
   /** Constants and parameters of the network set otherwise here: the names that the chemistry does not have. */
@@ -39,11 +41,11 @@ export interface Placed {
 
 export interface DutyFeed {
   readonly at: Span;
-  /** K. */
+  /** K; of one that changes in time, what it is before. */
   readonly temperature?: Value | undefined;
   /** Of one that changes in time, what it is before. */
   readonly species: ReadonlyMap<string, Placed>;
-  /** Those that change in time. */
+  /** Those that change in time, by species; that of the temperature under `temperature`. */
   readonly courses?: ReadonlyMap<string, FeedCourse>;
 }
 

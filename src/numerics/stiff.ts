@@ -90,7 +90,9 @@ export function radauIntegrator(given: StiffProblem, relative: number, stages = 
     rescale(p, y);
     if (p.firstStep) h = direction * Math.min(p.firstStep, Math.abs(p.to - t));
     else {
-      h = firstStep({ problem, t, to: p.to, y, f, scale, power }, next, nextF);
+      // Not even the trial may look further ahead than steps may.
+      const most = Math.min(Math.abs(p.to - t), p.longest?.(t) ?? Number.POSITIVE_INFINITY);
+      h = firstStep({ problem, t, to: t + direction * most, y, f, scale, power }, next, nextF);
       counts.rhs++;
     }
     control.begin();

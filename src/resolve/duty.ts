@@ -7,7 +7,7 @@ import { child, type Entry, entriesOf, itemsOf, type MapNode, type Tree, textOf 
 import { nearest } from "../text/nearest.js";
 import type { Span } from "../text/source.js";
 import { dimensions } from "../units/dimension.js";
-import { resolveMixture } from "./course.js";
+import { resolveFlows, resolveMixture, temperatureName } from "./course.js";
 import { feedTemperaturesUnused, heatFits, resolveHeat } from "./duty-heat.js";
 import { resolveLocal } from "./duty-local.js";
 import { massEquations, type SettledFeeds, settleFeeds, settleLimit } from "./feed-basis.js";
@@ -16,7 +16,7 @@ import { goesBack } from "./rate-values.js";
 import { resolveRegulated } from "./regulated.js";
 import { resolveReportLine } from "./report-line.js";
 import { aboveZero } from "./sign.js";
-import { emptyScope, resolveTemperature, resolveValue, type Wanted } from "./value.js";
+import { emptyScope, resolveTemperature, resolveValue } from "./value.js";
 
 /** Whoever can read files hands over the chemistry that a duty names; undefined once its problems are reported. */
 export interface DutyFiles {
@@ -47,7 +47,7 @@ export function resolveDuty(
   const chemistryNode = child(tree, "chemistry");
   const named = textOf(tree, "chemistry");
   const chemistry = named === undefined || !chemistryNode ? undefined : files.chemistry(named, chemistryNode.at);
-  const flows = placed(child(tree, "flows"), () => dimensions.flow, "the flow of feed", false, tell);
+  const { flows, flowCourses } = resolveFlows(child(tree, "flows"), files.tables, tell);
   const temperatureNode = child(tree, "temperature");
   const temperature = temperatureNode && resolveTemperature(temperatureNode, emptyScope, tell);
   aboveZero("the temperature", temperature, false, tell);
@@ -94,6 +94,7 @@ export function resolveDuty(
     path,
     chemistry,
     flows,
+    ...(flowCourses.size > 0 ? { flowCourses } : {}),
     ...given,
     ...(local.size > 0 ? { local } : {}),
     ...fed,
@@ -106,23 +107,6 @@ export function resolveDuty(
   if (good && settled && lines) return duty;
   faulty?.(duty);
   return undefined;
-}
-
-/** Values under names; each above zero, or not below it. */
-function placed(
-  node: Tree | undefined,
-  wanted: (name: string) => Wanted,
-  what: string,
-  zero: boolean,
-  report: Report,
-): Map<string, Placed> {
-  const found = new Map<string, Placed>();
-  for (const { key, value } of entriesOf(node)) {
-    const resolved = resolveValue(value, wanted(key.text), emptyScope, report);
-    if (!resolved || !aboveZero(`${what} '${key.text}'`, resolved, zero, report)) continue;
-    found.set(key.text, { at: key.at, value: resolved });
-  }
-  return found;
 }
 
 /** Names that the chemistry has are its constants; all others are left for the network. */
@@ -158,13 +142,8 @@ export function resolveFeeds(
   };
   return new Map(
     entriesOf(node).map(({ key, value }) => {
-      const written = entriesOf(value);
-      const heat = warm ? written.find((e) => e.key.text === "temperature") : undefined;
-      const temperature = heat && resolveTemperature(heat.value, emptyScope, report);
-      aboveZero(`the temperature of ${where} '${key.text}'`, temperature, false, report);
-      const what = `in ${where} '${key.text}', the concentration of`;
-      const entries = written.filter((e) => e !== heat && isSpecies(e));
-      return [key.text, { ...resolveMixture(key.at, entries, what, files, report), temperature }];
+      const entries = entriesOf(value).filter((e) => (warm && e.key.text === temperatureName) || isSpecies(e));
+      return [key.text, resolveMixture(key.at, entries, warm, `${where} '${key.text}'`, files, report)];
     }),
   );
 }

@@ -56,6 +56,7 @@ export function settleFeeds(
     });
     const courses = [...(feed.courses ?? [])].map(([s, course]): [string, FeedCourse] => {
       const [i, before] = [indexOf(s), feed.species.get(s)?.value];
+      if (i < 0) return [s, course]; // the temperature
       if (course.is === "upset")
         return [s, { ...course, to: converted(course.to, chemistry.species[i].molarMass, way[i]) }];
       const factor = before ? factorTo(before, chemistry.species[i].molarMass, way[i]) : 1;

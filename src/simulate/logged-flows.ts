@@ -3,7 +3,7 @@ import { Part, type Plant, type Settings } from "../compile/plant.js";
 import type { Series, Trial } from "../model/trial.js";
 import { RefusedError } from "../problems/refused.js";
 import { problem } from "../problems/report.js";
-import { type FlowCourse, loggedCourse } from "./flow-course.js";
+import { type FlowCourse, loggedCourse, nodeFlows } from "./flow-course.js";
 
 /** A feed that stops goes on at this part of its mean: what stands still has no direction. */
 const standstill = 1e-9;
@@ -19,37 +19,61 @@ const mostHalvings = 12;
  * @throws RefusedError where a flow of the log makes the network impossible
  */
 export function courseOf(plant: Plant, logs: ReadonlyMap<string, Series>, start: number): FlowCourse {
-  const balance = balancer(plant, logs);
-  const rows = [...new Set([...logs.values()].flatMap((log) => [...log.time]))].sort((a, b) => a - b);
+  const times = [...new Set([...logs.values()].flatMap((log) => [...log.time]))].sort((a, b) => a - b);
+  const rows = times.map((t) => ({ t: t - start, flows: [...logs.values()].map((log) => logged(log, t)) }));
+  return courseThrough(plant, [...logs.keys()], rows);
+}
+
+/** What some feeds bring at a time, m3/s; straight from row to row, two at one time are a jump. */
+export interface FlowRow {
+  /** s */
+  readonly t: number;
+  readonly flows: readonly number[];
+}
+
+/**
+ * The flows of a plant over time, from those of its feeds.
+ * @param plant compiled for what is not in the rows
+ * @param feeds names, one per flow of a row
+ * @param rows ascending
+ * @param inspect is shown every plant that is compiled on the way
+ * @throws RefusedError where a flow makes the network impossible
+ */
+export function courseThrough(
+  plant: Plant,
+  feeds: readonly string[],
+  rows: readonly FlowRow[],
+  inspect: (made: Plant) => void = () => undefined,
+): FlowCourse {
+  const balance = balancer(plant, feeds, rows, inspect);
   const knots: number[] = [];
   const flows: Balanced[] = [];
   const push = (t: number, row: Balanced): void => {
     knots.push(t);
     flows.push(row);
   };
-  const between = (a: number, fa: Balanced, b: number, fb: Balanced, depth: number): void => {
-    if (depth < mostHalvings && !balance.linear) {
-      const middle = (a + b) / 2;
-      const fm = balance.at(middle);
-      const most = fm.links.reduce((m, q) => Math.max(m, q), 0);
-      const bent = fm.links.some((q, k) => Math.abs(q - (fa.links[k] + fb.links[k]) / 2) > straight * most);
-      if (bent) {
-        between(a, fa, middle, fm, depth + 1);
-        push(middle, fm);
-        between(middle, fm, b, fb, depth + 1);
-      }
+  const between = (a: FlowRow, fa: Balanced, b: FlowRow, fb: Balanced, depth: number): void => {
+    if (depth >= mostHalvings || balance.linear || !(b.t > a.t)) return;
+    const middle = { t: (a.t + b.t) / 2, flows: a.flows.map((q, i) => (q + b.flows[i]) / 2) };
+    const fm = balance.at(middle.flows);
+    const most = fm.links.reduce((m, q) => Math.max(m, q), 0);
+    const bent = fm.links.some((q, k) => Math.abs(q - (fa.links[k] + fb.links[k]) / 2) > straight * most);
+    if (bent) {
+      between(a, fa, middle, fm, depth + 1);
+      push(middle.t, fm);
+      between(middle, fm, b, fb, depth + 1);
     }
   };
-  let before = balance.at(rows[0]);
-  push(rows[0], before);
+  let before = balance.at(rows[0].flows);
+  push(rows[0].t, before);
   for (let i = 1; i < rows.length; i++) {
-    const next = balance.at(rows[i]);
+    const next = balance.at(rows[i].flows);
     between(rows[i - 1], before, rows[i], next, 0);
-    push(rows[i], next);
+    push(rows[i].t, next);
     before = next;
   }
   return loggedCourse(
-    Float64Array.from(knots, (t) => t - start),
+    Float64Array.from(knots),
     flows.map((f) => f.links),
     flows.map((f) => f.nodes),
   );
@@ -57,13 +81,18 @@ export function courseOf(plant: Plant, logs: ReadonlyMap<string, Series>, start:
 
 interface Balanced {
   readonly links: Float64Array;
+  /** Those of the feeds behind those of the nodes. */
   readonly nodes: Float64Array;
 }
 
-/** The network balanced at the flows of a time. Where all flows are linear in those of the feeds, they are found once. */
-function balancer(plant: Plant, logs: ReadonlyMap<string, Series>): { at(t: number): Balanced; linear: boolean } {
+/** The network balanced at the flows of feeds. Where all flows are linear in these, they are found once. */
+function balancer(
+  plant: Plant,
+  feeds: readonly string[],
+  rows: readonly FlowRow[],
+  inspect: (made: Plant) => void,
+): { at(flows: readonly number[]): Balanced; linear: boolean } {
   const { compile } = compiler(plant.network);
-  const feeds = [...logs.keys()];
   const means = feeds.map((f) => plant.feeds.find((p) => p.name === f)?.flow ?? 0);
   const solve = (q: readonly number[]): Balanced => {
     const settings: Record<string, number> = { ...(plant.settings as Settings | undefined) };
@@ -72,13 +101,13 @@ function balancer(plant: Plant, logs: ReadonlyMap<string, Series>): { at(t: numb
     });
     const { plant: made, problems } = compile(settings);
     if (!made) throw new RefusedError(problems);
-    return { links: made.flow, nodes: made.columns.inflow };
+    inspect(made);
+    return { links: made.flow, nodes: nodeFlows(made) };
   };
-  const q = (t: number): number[] =>
-    feeds.map((f, i) => Math.max(logged(logs.get(f) as Series, t), standstill * means[i]));
   const base = solve(means);
   const apart = feeds.map((_, i) => solve(means.map((m, j) => (i === j ? 1.5 * m : m))));
-  const combine = (flows: readonly number[]): Balanced => {
+  const combine = (asked: readonly number[]): Balanced => {
+    const flows = asked.map((q, i) => Math.max(q, standstill * means[i]));
     const sum = (what: keyof Balanced): Float64Array =>
       base[what].map((b, k) =>
         Math.max(
@@ -88,9 +117,9 @@ function balancer(plant: Plant, logs: ReadonlyMap<string, Series>): { at(t: numb
       );
     return { links: sum("links"), nodes: sum("nodes") };
   };
-  const extremes = feeds.flatMap((f) => {
-    const { value } = logs.get(f) as Series;
-    return [value.reduce((m, x) => Math.min(m, x)), value.reduce((m, x) => Math.max(m, x))];
+  const extremes = feeds.flatMap((_, i) => {
+    const all = rows.map((row) => row.flows[i]);
+    return [all.reduce((m, x) => Math.min(m, x)), all.reduce((m, x) => Math.max(m, x))];
   });
   // Tried where all are small, where all are large, and at each alone.
   const trials = [
@@ -105,7 +134,7 @@ function balancer(plant: Plant, logs: ReadonlyMap<string, Series>): { at(t: numb
     const [found, wanted] = [combine(flows), solve(flows)];
     return wanted.links.every((w, k) => Math.abs(w - found.links[k]) <= 1e-11 * Math.max(largest, w));
   });
-  return { linear, at: (t) => (linear ? combine(q(t)) : solve(q(t))) };
+  return { linear, at: (flows) => (linear ? combine(flows) : solve(flows)) };
 }
 
 /** Straight between rows, the first before and the last after. */

@@ -106,7 +106,7 @@ export class Mixing {
   }
 
   /** Flux into each target per concentration of each source: `flux = weights * values`, by target. */
-  weights(flows: FlowsNow): Map<number, number>[] {
+  weights(flows: Omit<FlowsNow, "stamp">): Map<number, number>[] {
     const blends: Map<number, number>[] = Array.from(this.sources, (_, i) => new Map([[i, 1]]));
     const first = this.sources.length;
     for (const { joints, circle } of this.knots) {

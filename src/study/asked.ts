@@ -1,6 +1,6 @@
 import type { Settings } from "../compile/plant.js";
 import type { AimAsked, Asked, InputRange, Study, SweepAsked } from "../model/study.js";
-import { changes } from "../transient/inputs.js";
+import { changes } from "../transient/course-line.js";
 import { type AimResult, solveAim } from "./aim.js";
 import { changedVessel } from "./changed.js";
 import type { RivalDraws } from "./draws-of.js";

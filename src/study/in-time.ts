@@ -1,7 +1,7 @@
 import type { Plant } from "../compile/plant.js";
 import type { Duty } from "../model/duty.js";
+import { changes } from "../transient/course-line.js";
 import { endOf } from "../transient/in-time.js";
-import { changes } from "../transient/inputs.js";
 import { type Transient, transient } from "../transient/transient.js";
 
 /** A duty that goes on in time, in the vessel as fitted. */

@@ -3,6 +3,7 @@ import { type Conserved, imbalance } from "../reaction/conserved.js";
 import { passTube } from "../reaction/tube.js";
 import type { Run } from "./run.js";
 import { Sampled } from "./sampled.js";
+import type { Signal } from "./signal.js";
 
 /** What became of everything between 0 and the end, by component; scaled concentration times m3. */
 export interface Amounts {
@@ -17,20 +18,25 @@ export interface Amounts {
 /** Counts what was fed, what left, what is held and what reaction made. */
 export function amountsOf(run: Run, plant: Plant): Amounts {
   const { scene, horizon, feeds } = run.ask;
-  const { width, follow, sort } = scene;
+  const { width, follow, sort, course } = scene;
+  // Steady flows stay out of the integrals: amounts then add up to the last digit.
+  const passed = (signal: Signal, node: number): number => {
+    if (course.constant) {
+      signal.integral(horizon, one);
+      return course.through(node, 0);
+    }
+    signal.integral(horizon, one, (t, side) => course.through(node, t, side));
+    return 1;
+  };
   const sums = (): Float64Array => new Float64Array(width);
   const [fed, left, made, before, held, one] = [sums(), sums(), sums(), sums(), sums(), sums()];
   const add = (to: Float64Array, factor: number): void => {
     for (let i = 0; i < width; i++) to[i] += factor * one[i];
   };
-  plant.feeds.forEach(({ flow }, k) => {
-    feeds[k].integral(horizon, one);
-    add(fed, flow);
-  });
+  for (let k = 0; k < feeds.length; k++) add(fed, passed(feeds[k], sort.length + k));
   for (const { node, flow } of plant.outlets) {
     if (!(flow > 0)) continue;
-    run.signal(node).integral(horizon, one);
-    add(left, flow);
+    add(left, passed(run.signal(node), node));
   }
   for (const { stage, run: of, first } of run.stages) {
     for (let i = 0; i < width; i++) made[i] += of.made[i];
@@ -42,64 +48,61 @@ export function amountsOf(run: Run, plant: Plant): Amounts {
   for (let node = 0; node < sort.length; node++) {
     const body = follow[node];
     if (body?.is !== "parcels" || sort[node] === "joint" || sort[node] === "none") continue;
-    const flow = plant.columns.inflow[node];
-    const inside = body.stays ? apartIn(run, node, body.mean) : parcelsIn(run, node);
+    const { volume } = body;
+    const inside = body.stays ? apartIn(run, node) : parcelsIn(run, node);
     for (let i = 0; i < width; i++) {
-      before[i] += flow * inside.before[i];
-      held[i] += flow * inside.now[i];
-      made[i] += flow * (inside.now[i] - inside.before[i]);
+      before[i] += volume * inside.before[i];
+      held[i] += volume * inside.now[i];
+      made[i] += volume * (inside.now[i] - inside.before[i]);
     }
     // What reaction made on the way is what left and is held, less what entered and was held.
-    run.signal(node).integral(horizon, one);
-    add(made, flow);
-    run.entering(node).integral(horizon, one);
-    add(made, -flow);
+    add(made, passed(run.signal(node), node));
+    add(made, -passed(run.entering(node), node));
   }
   return { fed, left, made, before, held };
 }
 
-/** What a body of parcels that stay apart holds at 0 and at the end, over its flow. */
-function apartIn(run: Run, node: number, mean: number): { before: Float64Array; now: Float64Array } {
+/** What a body of parcels that stay apart holds at 0 and at the end, over its volume. */
+function apartIn(run: Run, node: number): { before: Float64Array; now: Float64Array } {
   const inside = (t: number): Float64Array => {
     const mixture = new Float64Array(run.ask.scene.width);
     run.inside(node, t, mixture);
-    return mixture.map((x) => x * mean);
+    return mixture;
   };
   return { before: inside(0), now: inside(run.ask.horizon) };
 }
 
-/** What a tube holds at 0 and at the end, over its flow: every parcel by when it entered. */
+/** What a tube holds at 0 and at the end, over its volume: every parcel by when it entered. */
 function parcelsIn(run: Run, node: number): { before: Float64Array; now: Float64Array } {
   const { scene, horizon, start } = run.ask;
-  const body = scene.follow[node];
-  const delay = body?.is === "parcels" ? body.delay : 0;
+  const path = run.path(node);
   const kinetics = scene.at(node).tube;
   const inlet = run.entering(node);
   const inside = (at: number): Float64Array => {
     const sum = new Float64Array(scene.width);
-    // Age u from 0 to the delay; what was there at the start has reacted since then only.
+    // From the inlet, 0, to the outlet, 1; what was there at the start has reacted since then only.
     const profile = new Sampled(
       run.basis,
       scene.width,
       {
-        unit: delay,
-        breaks: run.breaksWithin(node, at).map((t) => at - t),
-        longest: (u) => delay - u || delay,
-        evaluate(u, side, out) {
-          const age = Math.min(u, delay);
-          const entered = at - age;
+        unit: 1,
+        breaks: run.breaksWithin(node, at).map((t) => path.displaced(t, at)),
+        longest: (x) => 1 - x || 1,
+        evaluate(x, side, out) {
+          const entered = path.entered(at, Math.min(x, 1));
           const old = entered < 0 || (side > 0 && entered <= 2e-12 * at);
           if (old && start.is === "contents") {
             out.set(start.holding(node));
             return !(at > 0) || passTube(kinetics, at, out);
           }
           inlet.read(entered, -side, out, 0);
+          const age = at - entered;
           return !(age > 0) || passTube(kinetics, age, out);
         },
       },
       undefined,
     );
-    profile.integral(delay, sum);
+    profile.integral(1, sum);
     return sum;
   };
   return { before: inside(0), now: inside(horizon) };

@@ -1,71 +1,156 @@
 import type { Plant } from "../compile/plant.js";
 import { stronglyConnected } from "../numerics/graph.js";
 import { factor, solve } from "../numerics/lu.js";
+import type { FlowCourse, FlowsNow } from "../simulate/flow-course.js";
 import type { Sort } from "../simulate/integrable.js";
 
-/** What enters a node, as parts of what leaves nodes that hold something and of what feeds bring; parts add to 1. */
-export type Blend = ReadonlyMap<number, number>;
+/** One way into a node: a link, or a feed, from a source itself or, part by part, from a junction. */
+interface Way {
+  /** Of the link; of a feed -1. */
+  readonly link: number;
+  /** Whose flow counts where it is a feed. */
+  readonly feed: number;
+  /** Where the parts of a junction begin that it comes from; -1 where it comes from a source. */
+  readonly junction: number;
+  /** Where in the node's own parts each goes. */
+  readonly to: Int32Array;
+}
 
 /**
- * Junctions hold nothing: what enters any node is a blend of what leaves cells, tubes and other bodies, and of feeds. A source
- * is a node's number, or the number of nodes plus that of a feed.
+ * What enters every node, as parts of what leaves nodes that hold something and of what feeds bring: junctions hold nothing.
+ * Parts add to 1. A source is a node's number, or the number of nodes plus that of a feed.
  */
-export function blends(plant: Plant, sort: readonly Sort[]): (node: number) => Blend {
-  const { size, inflow } = plant.columns;
-  const into: { from: number; flow: number }[][] = Array.from({ length: size }, () => []);
-  plant.to.forEach((to, k) => {
-    if (plant.flow[k] > 0) into[to].push({ from: plant.from[k], flow: plant.flow[k] });
-  });
-  plant.feeds.forEach(({ node, flow }, k) => {
-    if (flow > 0) into[node].push({ from: size + k, flow });
-  });
-  const joint = (i: number): boolean => i < size && sort[i] === "joint";
-  const known = new Map<number, Blend>();
-  const add = (sum: Map<number, number>, from: number, part: number): void => {
-    if (!joint(from)) sum.set(from, (sum.get(from) ?? 0) + part);
-    else for (const [source, w] of known.get(from) ?? []) sum.set(source, (sum.get(source) ?? 0) + part * w);
-  };
-  const alone = (node: number): Blend => {
-    const sum = new Map<number, number>();
-    for (const { from, flow } of into[node]) add(sum, from, flow / inflow[node]);
-    return sum;
-  };
-  const kept = [...plant.from.keys()].filter((k) => joint(plant.from[k]) && joint(plant.to[k]) && plant.flow[k] > 0);
-  const graph = { size, from: kept.map((k) => plant.from[k]), to: kept.map((k) => plant.to[k]) };
-  for (const group of stronglyConnected(graph)) {
-    if (!joint(group[0])) continue;
-    const members = new Set(group);
-    if (!into[group[0]].some(({ from }) => members.has(from)) && group.length === 1)
-      known.set(group[0], alone(group[0]));
-    else circle(Array.from(group), members);
+export class Blends {
+  private readonly ways: Way[][];
+  private readonly own: Int32Array[];
+  private readonly begin: Int32Array;
+  /** Nodes in the order in which their parts are found; junctions that feed one another together. */
+  private readonly order: readonly Int32Array[];
+  private readonly known = new Map<number, Float64Array>();
+  private readonly changing: Float64Array;
+  private last = -1;
+
+  constructor(
+    plant: Plant,
+    sort: readonly Sort[],
+    readonly course: FlowCourse,
+  ) {
+    const { size } = plant.columns;
+    const into: { from: number; link: number; feed: number }[][] = Array.from({ length: size }, () => []);
+    plant.to.forEach((to, k) => {
+      if (plant.flow[k] > 0) into[to].push({ from: plant.from[k], link: k, feed: -1 });
+    });
+    plant.feeds.forEach(({ node, flow }, k) => {
+      if (flow > 0) into[node].push({ from: size + k, link: -1, feed: size + k });
+    });
+    const joint = (i: number): boolean => i < size && sort[i] === "joint";
+    this.order = ordered(plant, joint);
+    this.own = Array.from({ length: size }, () => new Int32Array(0));
+    for (const group of this.order) {
+      const found = new Set<number>();
+      for (const node of group) {
+        for (const { from } of into[node]) {
+          if (!joint(from)) found.add(from);
+          else for (const source of this.own[from]) found.add(source);
+        }
+      }
+      // Those that feed one another all have what any of them takes in.
+      const sources = Int32Array.from(found).sort();
+      for (const node of group) this.own[node] = sources;
+    }
+    this.begin = new Int32Array(size + 1);
+    for (let i = 0; i < size; i++) this.begin[i + 1] = this.begin[i] + this.own[i].length;
+    this.changing = new Float64Array(this.begin[size]);
+    this.ways = into.map((all, node) => {
+      const place = new Map(Array.from(this.own[node], (source, j) => [source, j]));
+      return all.map(({ from, link, feed }): Way => {
+        const through = joint(from) ? this.own[from] : Int32Array.of(from);
+        return {
+          link,
+          feed,
+          junction: joint(from) ? from : -1,
+          to: through.map((source) => place.get(source) ?? -1),
+        };
+      });
+    });
   }
-  return (node) => known.get(node) ?? alone(node);
+
+  /** What enters a node comes from. */
+  sources(node: number): Int32Array {
+    return this.own[node];
+  }
+
+  /** Where in `at` the parts of a node begin, in the order of its sources. */
+  first(node: number): number {
+    return this.begin[node];
+  }
+
+  /** The parts of all nodes at a time; good until the next call. */
+  at(t: number, side: number): Float64Array {
+    return this.by(this.course.at(t, side));
+  }
+
+  /** The parts at some flows. */
+  by(flows: FlowsNow): Float64Array {
+    if (flows.stamp < 0) {
+      if (flows.stamp !== this.last) this.find(flows, this.changing);
+      this.last = flows.stamp;
+      return this.changing;
+    }
+    let parts = this.known.get(flows.stamp);
+    if (!parts) {
+      parts = new Float64Array(this.changing.length);
+      this.find(flows, parts);
+      this.known.set(flows.stamp, parts);
+    }
+    return parts;
+  }
+
+  private find({ link, node: through }: FlowsNow, parts: Float64Array): void {
+    parts.fill(0);
+    for (const group of this.order) {
+      const round = group.length > 1 || this.ways[group[0]].some((way) => way.junction === group[0]);
+      const inside = round ? group : undefined;
+      for (const node of group) {
+        const to = this.begin[node];
+        for (const way of this.ways[node]) {
+          if (inside?.includes(way.junction)) continue;
+          const share = (way.link >= 0 ? link[way.link] : through[way.feed]) / through[node];
+          const from = way.junction < 0 ? -1 : this.begin[way.junction];
+          for (let j = 0; j < way.to.length; j++) parts[to + way.to[j]] += from < 0 ? share : share * parts[from + j];
+        }
+      }
+      if (inside) this.round(inside, link, through, parts);
+    }
+  }
 
   /** Junctions that feed one another: (1 - shares) blend = what comes from elsewhere. */
-  function circle(group: readonly number[], members: ReadonlySet<number>): void {
+  private round(group: Int32Array, link: Float64Array, through: Float64Array, parts: Float64Array): void {
     const n = group.length;
-    const place = new Map(group.map((node, i) => [node, i]));
     const matrix = new Float64Array(n * n);
-    const outside = group.map((node, i) => {
+    group.forEach((node, i) => {
       matrix[i * n + i] += 1;
-      const sum = new Map<number, number>();
-      for (const { from, flow } of into[node]) {
-        if (members.has(from)) matrix[i * n + (place.get(from) as number)] -= flow / inflow[node];
-        else add(sum, from, flow / inflow[node]);
+      for (const way of this.ways[node]) {
+        const j = group.indexOf(way.junction);
+        if (j >= 0) matrix[i * n + j] -= link[way.link] / through[node];
       }
-      return sum;
     });
     const lu = factor(matrix, n);
-    const sums = group.map(() => new Map<number, number>());
-    for (const source of new Set(outside.flatMap((sum) => [...sum.keys()]))) {
-      const column = Float64Array.from(outside, (sum) => sum.get(source) ?? 0);
-      if (lu !== "singular") solve(lu, column);
-      column.forEach((w, i) => {
-        if (w !== 0) sums[i].set(source, w);
-      });
+    if (lu === "singular") return;
+    const column = new Float64Array(n);
+    for (let s = 0; s < this.own[group[0]].length; s++) {
+      for (let i = 0; i < n; i++) column[i] = parts[this.begin[group[i]] + s];
+      solve(lu, column);
+      for (let i = 0; i < n; i++) parts[this.begin[group[i]] + s] = column[i];
     }
-    group.forEach((node, i) => {
-      known.set(node, sums[i]);
-    });
   }
+}
+
+/** Junctions before what they feed, then all others. */
+function ordered(plant: Plant, joint: (i: number) => boolean): Int32Array[] {
+  const { size } = plant.columns;
+  const kept = [...plant.from.keys()].filter((k) => joint(plant.from[k]) && joint(plant.to[k]) && plant.flow[k] > 0);
+  const graph = { size, from: kept.map((k) => plant.from[k]), to: kept.map((k) => plant.to[k]) };
+  const groups = [...stronglyConnected(graph)].map((group) => Int32Array.from(group));
+  return [...groups.filter(([i]) => joint(i)), ...groups.filter(([i]) => !joint(i))];
 }

@@ -4,6 +4,7 @@ import type { DutySettings } from "../reaction/conditions.js";
 import { type Figure, type InAndOut, speciesFigure, temperatureUnit, tracerFigure } from "../reaction/figures.js";
 import { one } from "../units/unit.js";
 import { beyond, type Span } from "./beyond.js";
+import { changes } from "./course-line.js";
 import type { Transient } from "./transient.js";
 
 /** A figure of a transient; of one over a limit, also when, and what left meanwhile. */
@@ -49,11 +50,9 @@ export function transientFigures(
     }
     const at = (t: number): Figure => speciesFigure(duty, run.species, line, streamsAt(plant, run, line, t), settings);
     const isShare = line.what === "conversion" || line.what === "yield" || line.what === "selectivity";
-    return { ...at(end), ...(isShare && isUpset(duty) && plant.feeds.length > 0 ? rangeOf(run.times, at) : {}) };
+    return { ...at(end), ...(isShare && changes(duty) && plant.feeds.length > 0 ? rangeOf(run.times, at) : {}) };
   });
 }
-
-const isUpset = (duty: Duty): boolean => [...duty.feeds.values()].some((f) => (f.courses?.size ?? 0) > 0);
 
 function rangeOf(times: ArrayLike<number>, figure: (t: number) => Figure): Pick<TransientFigure, "range"> {
   const seen = Array.from(times, (at): Extreme => ({ at, value: figure(at).value })).filter((e) =>
@@ -110,7 +109,7 @@ function beyondFigure(
   if (!spans) return unknown;
   const value = spans.reduce((sum, { from, to }) => sum + to - from, 0);
   const stillAtEnd = spans.length > 0 && spans[spans.length - 1].to >= end;
-  const volume = plant.columns.inflow[plant.exit.get(at) ?? 0] * value;
+  const volume = spans.reduce((sum, { from, to }) => sum + look.volume(to) - look.volume(from), 0);
   return { name: line.text, value, why: undefined, unit, beyond: { spans, volume, amount: amount(spans), stillAtEnd } };
 
   function stretchesBeyond(): Span[] | undefined {
@@ -127,14 +126,13 @@ function beyondFigure(
 
   function amount(within: readonly Span[]): number | undefined {
     if (i === n) return undefined;
-    const flow = plant.columns.inflow[plant.exit.get(at) ?? 0];
     const row = new Float64Array(n);
     let sum = 0;
     for (const { from, to } of within) {
-      look.integral(to, row);
-      sum += flow * row[i];
-      look.integral(from, row);
-      sum -= flow * row[i];
+      look.left(to, row);
+      sum += row[i];
+      look.left(from, row);
+      sum -= row[i];
     }
     return sum;
   }
@@ -150,7 +148,7 @@ function streamsAt(plant: Plant, run: Transient, line: Reported, t: number): InA
     const fed = new Float64Array(n);
     if (plant.feeds.length === 0) run.look(line.at).at(0, fed);
     else {
-      const flow = plant.feeds.reduce((sum, f) => sum + f.flow, 0);
+      const flow = plant.feeds.reduce((sum, { name }) => sum + run.feedFlow(name, t), 0);
       run.fed(t, fed);
       for (let i = 0; i < n; i++) fed[i] /= flow;
     }
@@ -161,8 +159,9 @@ function streamsAt(plant: Plant, run: Transient, line: Reported, t: number): InA
   run.fed(t, fed);
   for (const { name, flow } of plant.outlets) {
     if (!(flow > 0)) continue;
-    run.look(name).at(t, there, -1);
-    for (let i = 0; i < n; i++) out[i] += flow * there[i];
+    const look = run.look(name);
+    look.at(t, there, -1);
+    for (let i = 0; i < n; i++) out[i] += look.flow(t, -1) * there[i];
   }
   return { fed, out };
 }

@@ -10,12 +10,11 @@ export type Follow =
   /** Parcels that stay by themselves: all equally long, or as the body's kind shares their stays out. */
   | {
       readonly is: "parcels";
-      /** s: nothing leaves earlier. */
-      readonly delay: number;
-      /** Undefined: all stay for `delay`. */
+      /** m3, and how much of it must be displaced before anything leaves. */
+      readonly volume: number;
+      readonly lag: number;
+      /** In units of the volume displaced; undefined: all are pushed out by as much. */
       readonly stays: Stays | undefined;
-      /** s */
-      readonly mean: number;
       /** How a jump that enters spreads, as far as that is known by equations. */
       readonly spread: Realization | undefined;
     }
@@ -29,8 +28,7 @@ export type Follow =
 export function followOf(plant: Plant, node: number): Follow | undefined {
   const { part, volume, inflow } = plant.columns;
   if (part[node] === Part.Delay) {
-    const mean = volume[node] / inflow[node];
-    return { is: "parcels", delay: mean, stays: undefined, mean, spread: undefined };
+    return { is: "parcels", volume: volume[node], lag: volume[node], stays: undefined, spread: undefined };
   }
   const block = plant.columns.blockAt(node);
   if (!block) return undefined;
@@ -47,10 +45,10 @@ export function followOf(plant: Plant, node: number): Follow | undefined {
     return { is: "states", realization: realizationAt(unit, block.volume, pockets), flowing: unit.input.length };
   }
   if (pockets) return refuse("a body without back-mixing beside stagnant pockets");
-  const mean = block.volume / inflow[node];
-  if (mixing.is === "plug") return { is: "parcels", delay: mean, stays: undefined, mean, spread: undefined };
+  const held = block.volume;
+  if (mixing.is === "plug") return { is: "parcels", volume: held, lag: held, stays: undefined, spread: undefined };
   const looped = plant.groups.some((group) => group.length > 1 && group.includes(node));
   if (looped) return refuse("a body of parcels that stay apart, within a recycle");
   const { stays } = mixing;
-  return { is: "parcels", delay: stays.from * mean, stays, mean, spread: block.realize(inflow[node]) };
+  return { is: "parcels", volume: held, lag: stays.from * held, stays, spread: block.realize(inflow[node]) };
 }

@@ -3,8 +3,8 @@ import type { Duty } from "../model/duty.js";
 import type { DutySettings } from "../reaction/conditions.js";
 import type { Figure } from "../reaction/figures.js";
 import { settlingTime } from "../simulate/tracer.js";
+import { lastChange } from "./course-line.js";
 import { transientFigures } from "./figures.js";
-import { lastChange } from "./inputs.js";
 import { type Transient, transient } from "./transient.js";
 
 /** Fine enough for draws: far finer than what is drawn. */

@@ -6,8 +6,6 @@ import type { TubeAsk } from "./tube-signal.js";
 
 export interface ParcelSignalAsk extends TubeAsk {
   readonly stays: Stays;
-  /** Mean stay, s. */
-  readonly mean: number;
   /** s */
   readonly horizon: number;
   /** Times at which what enters jumps or kinks, s. */
@@ -29,12 +27,13 @@ export interface ParcelSignal {
  * @see P.V. Danckwerts, Chem. Eng. Sci. 8 (1958) 93-102
  */
 export function parcelSignal(ask: ParcelSignalAsk): ParcelSignal {
-  const { scene, node, start, basis, breaks, stays, mean, horizon, inlet, entering } = ask;
-  const { width } = scene;
+  const { scene, node, start, basis, breaks, stays, path, horizon, inlet, entering } = ask;
+  const { width, course } = scene;
+  const { mean } = path;
   const parcels = new Parcels({
     kinetics: scene.at(node).cell,
     stays,
-    mean,
+    path,
     inlet,
     breaks: ask.entries,
     horizon,
@@ -45,7 +44,9 @@ export function parcelSignal(ask: ParcelSignalAsk): ParcelSignal {
   const old = (): Pieces | undefined => {
     if (!("old" in known)) {
       known.old =
-        start.is === "steady" ? parcels.known(entering, mean * last) : parcels.trajectory(start.holding(node), horizon);
+        start.is === "steady"
+          ? parcels.known(entering, mean * last + (course.constant ? 0 : horizon))
+          : parcels.trajectory(start.holding(node), horizon);
     }
     return known.old;
   };
@@ -56,7 +57,10 @@ export function parcelSignal(ask: ParcelSignalAsk): ParcelSignal {
     old()?.read(t, 1, there, 0);
     for (let i = 0; i < width; i++) out[i] += left * Math.max(there[i], 0);
   };
-  const total = start.is === "steady" ? start.leaving(node) : undefined;
+  const before = start.is === "steady" ? start.leaving(node) : start.holding(node);
+  // While flows are steady, what is new is a departure from what leaves anyway.
+  const total = start.is === "steady" && course.constant ? before : undefined;
+  const steady = start.is === "steady";
   /** Share that stays longer. */
   const share = (x: number): number => (x < stays.from ? 1 : stays.washout(x));
   const signal = new Sampled(
@@ -71,11 +75,12 @@ export function parcelSignal(ask: ParcelSignalAsk): ParcelSignal {
         if (!old()) return false;
         if (!parcels.integral(t, stays.from, stays.density, total ? old() : undefined, out)) return false;
         if (total) for (let i = 0; i < width; i++) out[i] += total[i];
-        else addOld(t, share(t / mean), out);
+        else if (steady) parcels.addOlder(t, stays.from, stays.density, share(last), old() as Pieces, out);
+        else addOld(t, share(path.displaced(0, t)), out);
         return true;
       },
     },
-    total ?? (start.is === "contents" ? start.holding(node) : undefined),
+    before,
   );
   let held: Float64Array | undefined;
   return {
@@ -86,7 +91,8 @@ export function parcelSignal(ask: ParcelSignalAsk): ParcelSignal {
       if (total) {
         held ??= parcels.weighed(then, share, staysBeyond(stays, last));
         for (let i = 0; i < width; i++) out[i] += held[i];
-      } else addOld(t, staysBeyond(stays, t / mean), out);
+      } else if (steady) parcels.addOlder(t, 0, share, staysBeyond(stays, last), then, out);
+      else addOld(t, staysBeyond(stays, path.displaced(0, t)), out);
       return true;
     },
   };

@@ -1,6 +1,7 @@
 import type { Stays } from "../compartments/stays.js";
 import { gaussLegendre } from "../numerics/gauss-legendre.js";
 import type { Kinetics } from "../reaction/kinetics.js";
+import type { Path } from "./path.js";
 import type { PieceBasis, Pieces } from "./pieces.js";
 import type { Signal } from "./signal.js";
 import { trajectories } from "./trajectory.js";
@@ -27,8 +28,7 @@ interface Entered {
 export interface ParcelAsk {
   readonly kinetics: Kinetics;
   readonly stays: Stays;
-  /** Mean stay, s. */
-  readonly mean: number;
+  readonly path: Path;
   readonly inlet: Signal;
   /** Times at which what enters jumps or kinks, s, ascending. */
   readonly breaks: ArrayLike<number>;
@@ -97,7 +97,7 @@ export class Parcels {
   }
 
   /**
-   * Integral over ages x (in units of the mean stay) from `from` to that of what entered at 0, of share(x) times what has
+   * Integral over stays x (in volumes displaced) from `from` to that of what entered at 0, of share(x) times what has
    * become of what entered x ago, less `base` at that age where it is given. False where something could not be followed.
    */
   integral(
@@ -107,28 +107,51 @@ export class Parcels {
     base: Pieces | undefined,
     out: Float64Array,
   ): boolean {
-    const { mean, stays } = this.ask;
+    const { path, stays } = this.ask;
     const { width, blend } = this;
     const own = new Float64Array(width);
     out.fill(0, 0, width);
-    if (!(t / mean > from)) return true;
-    this.reach(t - from * mean);
+    const oldest = path.displaced(0, t);
+    if (!(oldest > from)) return true;
+    this.reach(path.entered(t, from));
     if (this.failed) return false;
     // Beyond the last mark nobody is left.
-    const end = Math.min(t / mean, stays.marks[stays.marks.length - 1]);
+    const end = Math.min(oldest, stays.marks[stays.marks.length - 1]);
     over(this.cuts(t, from, end), (x, w) => {
       const part = w * share(x);
       if (part === 0) return;
-      this.became(t - x * mean, x * mean, blend);
-      base?.read(x * mean, 1, own, 0);
+      const entered = path.entered(t, x);
+      this.became(entered, t - entered, blend);
+      base?.read(t - entered, 1, own, 0);
       for (let i = 0; i < width; i++) out[i] += part * (blend[i] - own[i]);
     });
     return true;
   }
 
+  /**
+   * Adds the same of what had entered before 0, all alike, as `of` says by age: stays x from that of what entered at 0, and
+   * `rest` of what has stayed longest.
+   */
+  addOlder(t: number, from: number, share: (x: number) => number, rest: number, of: Pieces, out: Float64Array): void {
+    const { path, stays } = this.ask;
+    const { width, blend } = this;
+    const last = stays.marks[stays.marks.length - 1];
+    const begin = Math.max(from, path.displaced(0, t));
+    const add = (x: number, part: number): void => {
+      of.read(t - path.entered(t, x), 1, blend, 0);
+      for (let i = 0; i < width; i++) out[i] += part * blend[i];
+    };
+    if (begin < last) {
+      const inside = [stays.from, ...fine(stays), ...stays.marks].filter((x) => x > begin && x < last);
+      over([begin, ...inside.sort((a, b) => a - b), last], (x, w) => add(x, w * share(x)));
+    }
+    add(Math.max(begin, last), rest);
+  }
+
   /** Integral of share(x) times what has become of one mixture at age x, up to the last mark, and `rest` of what it is then. */
   weighed(of: Pieces, share: (x: number) => number, rest: number): Float64Array {
-    const { stays, mean } = this.ask;
+    const { stays, path } = this.ask;
+    const { mean } = path;
     const own = new Float64Array(this.width);
     const sum = new Float64Array(this.width);
     const add = (x: number, part: number): void => {
@@ -142,11 +165,11 @@ export class Parcels {
 
   /** Stays between which nothing is hard to follow: marks of the body, stretches of entry, and finer ones towards age 0. */
   private cuts(t: number, from: number, end: number): number[] {
-    const { stays, mean } = this.ask;
+    const { stays, path } = this.ask;
     // Nobody leaves before `from`: there the share that stays longer has a corner.
     const all = [from, end, stays.from, ...stays.marks, ...(from > 0 ? [] : fine(stays))];
-    for (let k = this.locate(t - end * mean); k < this.entered.length; k++) {
-      all.push((t - this.entered[k].from) / mean, (t - this.entered[k].to) / mean);
+    for (let k = this.locate(path.entered(t, end)); k < this.entered.length; k++) {
+      all.push(path.displaced(this.entered[k].from, t), path.displaced(this.entered[k].to, t));
     }
     const inside = [...new Set(all)].filter((x) => x >= from && x <= end).sort((a, b) => a - b);
     const kept = inside.filter((x, k) => k === 0 || x - inside[k - 1] > 1e-13 * end);
@@ -182,7 +205,8 @@ export class Parcels {
 
   /** Follows parcels up to those that enter at a time. */
   private reach(until: number): void {
-    const { breaks, inlet, mean, horizon } = this.ask;
+    const { breaks, inlet, path, horizon } = this.ask;
+    const { mean } = path;
     for (;;) {
       const from = this.entered.at(-1)?.to ?? 0;
       if (this.failed || from >= until || from >= horizon) return;
@@ -219,11 +243,15 @@ export class Parcels {
   }
 
   private parcel(mixture: Float64Array, entered: number): Pieces | undefined {
-    const { stays, mean, horizon } = this.ask;
+    const { stays, path, horizon } = this.ask;
     for (const known of [this.last, this.usual]) {
       if (known?.mixture.every((x, i) => x === mixture[i])) return known.pieces;
     }
-    const longest = Math.min(horizon - entered, mean * stays.marks[stays.marks.length - 1]);
+    const last = stays.marks[stays.marks.length - 1];
+    // Where flows change what enters later may stay longer, and the same trajectory is to serve it.
+    const longest = path.course.constant
+      ? Math.min(horizon - entered, path.mean * last)
+      : Math.max(0, horizon - entered);
     const pieces = this.follow(mixture, longest);
     // What enters later stays no longer: one trajectory serves all that enter alike.
     if (pieces) this.last = { mixture: mixture.slice(), pieces };

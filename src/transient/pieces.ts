@@ -1,7 +1,8 @@
+import { gaussLegendre } from "../numerics/gauss-legendre.js";
 import { enlarged, lastUpTo } from "../numerics/growing.js";
 import { radauCoefficients } from "../numerics/radau-coefficients.js";
 import { stepBasis } from "../simulate/history.js";
-import type { Signal } from "./signal.js";
+import type { Signal, Weight } from "./signal.js";
 
 /** Stages of a step; a piece of a signal is known at its start and at them. */
 export type StageCount = 3 | 5 | 7;
@@ -38,6 +39,8 @@ function integralWeights(c: Float64Array): number[] {
     return powers.reduce((sum, a, k) => sum + a / (k + 1), 0);
   });
 }
+
+const { point, weight: gaussWeight } = gaussLegendre(8);
 
 /** Times closer than this, relative, are one: sums of delays are rounded. */
 export const sameTime = 2e-12;
@@ -95,9 +98,13 @@ export class Pieces implements Signal {
     this.blend(k, out, to);
   }
 
-  integral(t: number, out: Float64Array): void {
+  integral(t: number, out: Float64Array, weight?: Weight): void {
     out.fill(0, 0, this.width);
     if (!(t > 0) || this.count === 0) return;
+    if (weight) {
+      this.weighed(t, weight, out);
+      return;
+    }
     const k = this.locate(t, -1);
     const part = this.partOf(k, t);
     if (part === 1) {
@@ -107,6 +114,32 @@ export class Pieces implements Signal {
     this.basis.weighIntegral(part, this.weights);
     this.blend(k, out, 0);
     for (let i = 0; i < this.width; i++) out[i] = this.sums[k * this.width + i] + this.lengths[k] * out[i];
+  }
+
+  /** Whole pieces as the method adds them up, what is left of the last as a polynomial. */
+  private weighed(t: number, weight: Weight, out: Float64Array): void {
+    const { basis, width, stride, values, starts, lengths } = this;
+    const last = this.locate(t, -1);
+    const rest = this.partOf(last, t);
+    const whole = rest === 1 ? last + 1 : last;
+    const { places } = basis;
+    for (let k = 0; k < whole; k++) {
+      for (let p = 1; p < places.length; p++) {
+        const w = lengths[k] * basis.whole[p] * weight(starts[k] + places[p] * lengths[k], -1);
+        for (let i = 0, at = k * stride + p * width; i < width; i++) out[i] += w * values[at + i];
+      }
+    }
+    if (rest === 1) return;
+    for (let g = 0; g < point.length; g++) {
+      const part = (rest * (1 + point[g])) / 2;
+      basis.weigh(part, this.weights);
+      const w = ((rest * lengths[last]) / 2) * gaussWeight[g] * weight(starts[last] + part * lengths[last], 1);
+      for (let i = 0; i < width; i++) {
+        let sum = 0;
+        for (let p = 0; p < places.length; p++) sum += this.weights[p] * values[last * stride + p * width + i];
+        out[i] += w * sum;
+      }
+    }
   }
 
   pace(t: number, count: number): number {

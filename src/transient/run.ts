@@ -1,9 +1,9 @@
 import type { Halt } from "../numerics/odex.js";
 import { arrivals } from "../simulate/arrivals.js";
-import { steadyCourse } from "../simulate/flow-course.js";
 import type { Drive } from "../simulate/linear-system.js";
 import type { FeedSignal } from "./feed-signal.js";
 import { type ParcelSignal, parcelSignal } from "./parcel-signal.js";
+import { Path } from "./path.js";
 import { type PieceBasis, pieceBasis } from "./pieces.js";
 import type { Scene } from "./scene.js";
 import { MixedSignal, type Signal } from "./signal.js";
@@ -114,23 +114,26 @@ export class Run {
 
   /** What enters a node. */
   entering(node: number): Signal {
-    const blend = [...this.ask.scene.blend(node)];
-    const sources = blend.map(([source]) => this.signal(source));
-    return sources.length === 1 && blend[0][1] === 1
-      ? sources[0]
-      : new MixedSignal(
-          sources,
-          blend.map(([, part]) => part),
-          this.ask.scene.width,
-        );
+    const { blends, width } = this.ask.scene;
+    const sources = Array.from(blends.sources(node), (source) => this.signal(source));
+    return sources.length === 1 ? sources[0] : new MixedSignal(sources, blends, node, width);
+  }
+
+  /** The way through a body of parcels. */
+  path(node: number): Path {
+    const { scene } = this.ask;
+    const body = scene.follow[node];
+    if (body?.is !== "parcels") throw new Error("a body that nobody follows");
+    return new Path(scene.course, node, body.volume, body.lag / body.volume);
   }
 
   /** When what then was in a tube and was not smooth entered it: from now on backwards, s. */
   breaksWithin(node: number, at: number): number[] {
-    const body = this.ask.scene.follow[node];
-    const delay = body?.is === "parcels" ? body.delay : 0;
-    const entered = Array.from(this.jumps.get(node) ?? [], (t) => t - delay);
-    return entered.filter((t) => t > at - delay && t < at).reverse();
+    const path = this.path(node);
+    const entered = Array.from(this.jumps.get(node) ?? [], (t) => path.entered(t, 1));
+    const all = [...entered, ...this.ask.scene.course.knots];
+    const oldest = path.entered(at, 1);
+    return all.filter((t) => t > oldest && t < at).sort((a, b) => b - a);
   }
 
   private made(source: number): Signal {
@@ -149,7 +152,7 @@ export class Run {
     const ask: TubeAsk = {
       scene,
       node: source,
-      delay: body.delay,
+      path: this.path(source),
       // In a circle of tubes what enters is known only once all are there.
       inlet: {
         read: (t, side, out, to) => inlet().read(t, side, out, to),
@@ -158,7 +161,7 @@ export class Run {
       },
       start,
       basis: this.basis,
-      breaks: this.jumps.get(source) ?? new Float64Array(0),
+      breaks: sorted([...(this.jumps.get(source) ?? []), ...scene.course.knots].filter((t) => t >= 0)),
       longest: () => Math.min(loop, horizon),
     };
     if (!body.stays) return tubeSignal(ask);
@@ -166,7 +169,6 @@ export class Run {
     const apart = parcelSignal({
       ...ask,
       stays: body.stays,
-      mean: body.mean,
       horizon,
       entries,
       entering: this.enteringBefore(source),
@@ -184,12 +186,12 @@ export class Run {
   /** Times at which what enters a node may jump or kink. */
   private entries(node: number): Float64Array {
     const { scene, feeds } = this.ask;
-    const times = [...scene.blend(node).keys()].flatMap((source) =>
+    const times = [...scene.blends.sources(node)].flatMap((source) =>
       source < scene.sort.length
         ? Array.from(this.jumps.get(source) ?? [])
         : Array.from(feeds[source - scene.sort.length].times),
     );
-    return sorted(times.filter((t) => t >= 0));
+    return sorted([...times, ...scene.course.knots].filter((t) => t >= 0));
   }
 
   /** What entered a node before, in balance; nothing where it starts with what it holds. */
@@ -197,12 +199,15 @@ export class Run {
     const { scene, start, feeds } = this.ask;
     const mixture = new Float64Array(scene.width);
     if (start.is !== "steady") return mixture;
-    for (const [source, part] of scene.blend(node)) {
+    const { blends, course } = scene;
+    const parts = blends.by(course.at(0, -1));
+    blends.sources(node).forEach((source, j) => {
+      const part = parts[blends.first(node) + j];
       const leaving = new Float64Array(scene.width);
       if (source < scene.sort.length) leaving.set(start.leaving(source));
       else feeds[source - scene.sort.length].read(-1, -1, leaving, 0);
       for (let i = 0; i < scene.width; i++) mixture[i] += part * leaving[i];
-    }
+    });
     return mixture;
   }
 
@@ -218,7 +223,7 @@ export class Run {
     const sources = new Set<number>();
     for (const node of nodes) {
       if (!(scene.plant.columns.inflow[node] > 0)) continue;
-      for (const source of scene.blend(node).keys()) {
+      for (const source of scene.blends.sources(node)) {
         const before = source < scene.sort.length && scene.stage[source] < scene.stage[node];
         if (!own.has(source) && source < scene.sort.length && (before || !scene.looped[source])) sources.add(source);
       }
@@ -238,12 +243,12 @@ export class Run {
     const need = (source: number): void => {
       if (source >= scene.sort.length) return;
       if (this.isHeld(source)) wanted.add(source);
-      else if (scene.sort[source] === "joint") for (const s of scene.blend(source).keys()) need(s);
+      else if (scene.sort[source] === "joint") for (const s of scene.blends.sources(source)) need(s);
     };
     looks.forEach(need);
     for (let i = 0; i < scene.sort.length; i++) {
       if (!(scene.plant.columns.inflow[i] > 0) || scene.sort[i] === "joint") continue;
-      for (const source of scene.blend(i).keys()) {
+      for (const source of scene.blends.sources(i)) {
         const later = source < scene.sort.length && scene.stage[source] < scene.stage[i];
         if (later || scene.follow[i]?.is === "parcels") need(source);
       }
@@ -256,8 +261,11 @@ export class Run {
     const { scene, feeds, start, horizon } = this.ask;
     const { plant, net } = scene;
     // What is on its way at the end counts, too.
-    const slowest = scene.follow.reduce((most, f) => Math.max(most, f?.is === "parcels" ? f.delay : 0), 0);
-    const end = horizon + slowest;
+    const { course } = scene;
+    const end = scene.follow.reduce(
+      (late, f, i) => (f?.is === "parcels" ? Math.max(late, course.leaves(i, horizon, f.lag)) : late),
+      horizon,
+    );
     const found: ReturnType<typeof arrivals>[] = [];
     const look = (entry: Map<number, number>, times: readonly number[]): void => {
       if (entry.size === 0 || times.length === 0) return;
@@ -268,12 +276,16 @@ export class Run {
         level: Float64Array.from(times, (_, i) => (i % 2 === 0 ? 1 : 0)),
         slope: new Float64Array(times.length),
       };
-      found.push(arrivals(net, steadyCourse(plant), entry, drive, end));
+      found.push(arrivals(net, course, entry, drive, end));
     };
     plant.feeds.forEach(({ node }, k) => {
       const times = [...new Set(feeds[k].times)].filter((t) => feeds[k].times.length > 1 && t >= 0 && t <= horizon);
       look(new Map([[node, 1]]), times);
     });
+    // What flows on the way changes, and with it how long it stays, and what junctions mix.
+    const turns = [...new Set(course.knots)].filter((t) => t >= 0 && t <= horizon);
+    const through = [...scene.sort.keys()].filter((i) => scene.sort[i] !== "none");
+    look(new Map(through.map((i) => [i, 1])), turns);
     // Where things start otherwise than what enters, the front between goes through everything.
     if (start.is === "contents") {
       const all = [...scene.sort.keys()].filter((i) => scene.sort[i] !== "none" && scene.sort[i] !== "joint");
@@ -296,11 +308,11 @@ function sorted(times: number[]): Float64Array {
 }
 
 /** By stage, the shortest delay in a circle; Infinity where there is none. */
-function loops({ stages, stage, looped, follow, sort }: Scene): Float64Array {
+function loops({ stages, stage, looped, follow, sort, course }: Scene): Float64Array {
   const shortest = new Float64Array(stages).fill(Number.POSITIVE_INFINITY);
   follow.forEach((f, i) => {
     if (looped[i] && f?.is === "parcels" && sort[i] !== "joint")
-      shortest[stage[i]] = Math.min(shortest[stage[i]], f.delay);
+      shortest[stage[i]] = Math.min(shortest[stage[i]], course.shortest(i, f.lag));
   });
   return shortest;
 }

@@ -1,5 +1,5 @@
 import { type PieceBasis, Pieces } from "./pieces.js";
-import type { Signal } from "./signal.js";
+import type { Signal, Weight } from "./signal.js";
 
 /** How far a polynomial may miss what it stands for, relative, and in scaled concentrations. */
 const relative = 3e-10;
@@ -57,9 +57,9 @@ export class Sampled implements Signal {
     this.pieces.read(t, side, out, to);
   }
 
-  integral(t: number, out: Float64Array): void {
+  integral(t: number, out: Float64Array, weight?: Weight): void {
     this.reach(t, -1);
-    this.pieces.integral(t, out);
+    this.pieces.integral(t, out, weight);
   }
 
   pace(t: number, count: number): number {
@@ -80,7 +80,7 @@ export class Sampled implements Signal {
       this.nextBreak++;
     const stop = source.breaks[this.nextBreak] ?? Number.POSITIVE_INFINITY;
     const least = Math.max(shortest * source.unit, 1e-12 * from);
-    let length = Math.min(this.hint, source.longest(from));
+    let length = Math.max(1e-12 * from, Math.min(this.hint, source.longest(from)));
     let before = Number.POSITIVE_INFINITY;
     for (;;) {
       let to = from + length;
@@ -93,7 +93,7 @@ export class Sampled implements Signal {
       const error = good ? this.error(from, span) : Number.NaN;
       const smooth = !(error < nearly && error > before / 4);
       before = error;
-      if (!(error > 1) || span <= least || !smooth) {
+      if (!(error > 1) || length <= least || !smooth) {
         if (!good) for (const row of rows) row.fill(Number.NaN);
         this.pieces.add(from, span, (p, into, at) => into.set(rows[p], at));
         const grown = error > 0 ? 0.9 * error ** (-1 / basis.places.length) : 4;

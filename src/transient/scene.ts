@@ -4,8 +4,9 @@ import { bodyAt } from "../reaction/bodies.js";
 import type { Conditions } from "../reaction/conditions.js";
 import type { Pass } from "../reaction/dispersion.js";
 import type { Reactions } from "../reaction/kinetics.js";
+import type { FlowCourse } from "../simulate/flow-course.js";
 import { integrable, type Sort } from "../simulate/integrable.js";
-import { type Blend, blends } from "./blends.js";
+import { Blends } from "./blends.js";
 import { type Follow, followOf } from "./follow.js";
 
 /** A plant with what happens in it, cut into stages: cells and dispersed bodies between tubes are integrated together. */
@@ -22,7 +23,8 @@ export interface Scene {
   /** Is the node in a circle of nodes? */
   readonly looped: Uint8Array;
   readonly net: ReturnType<typeof integrable>;
-  blend(node: number): Blend;
+  readonly blends: Blends;
+  readonly course: FlowCourse;
   /** What happens at a node. */
   at(node: number): Reactions;
   /** What a node makes of a mixture that goes through it. */
@@ -30,7 +32,7 @@ export interface Scene {
 }
 
 /** @throws RefusedError where a body cannot be followed in time */
-export function sceneOf(plant: Plant, { size: width, reactionsAt }: Conditions): Scene {
+export function sceneOf(plant: Plant, { size: width, reactionsAt }: Conditions, course: FlowCourse): Scene {
   const { size, inflow, part } = plant.columns;
   const follow = Array.from({ length: size }, (_, i) =>
     inflow[i] > 0 || part[i] === 0 ? followOf(plant, i) : undefined,
@@ -47,7 +49,8 @@ export function sceneOf(plant: Plant, { size: width, reactionsAt }: Conditions):
     stages,
     looped: net.looped,
     net: { ...net, stage, stages },
-    blend: blends(plant, net.sort),
+    blends: new Blends(plant, net.sort, course),
+    course,
     at: reactionsAt,
     pass: (node) => bodyAt(plant, node, reactionsAt(node)),
   };

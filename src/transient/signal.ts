@@ -1,3 +1,8 @@
+import type { Blends } from "./blends.js";
+
+/** What an integral over time is weighed with: a flow, m3/s. */
+export type Weight = (t: number, side: number) => number;
+
 /**
  * A mixture over time, one concentration per component (scaled as `Kinetics` has them), from 0 on; before 0 what stood there
  * before. At a jump, side 1 is the value after it, -1 before.
@@ -5,43 +10,54 @@
 export interface Signal {
   /** Writes the mixture at t (s) into out[to ...]. */
   read(t: number, side: number, out: Float64Array, to: number): void;
-  /** Writes the integral from 0 to t. */
-  integral(t: number, out: Float64Array): void;
+  /** Writes the integral from 0 to t; the weight may kink and jump only where the signal is known to. */
+  integral(t: number, out: Float64Array, weight?: Weight): void;
   /** A time after t that what reads this should not step over at once: where the piece ends that comes `count` pieces later. */
   pace(t: number, count: number): number;
 }
 
-/** Signals mixed in fixed parts. */
+/** What enters a node: signals mixed as the flows then are. */
 export class MixedSignal implements Signal {
   private readonly one: Float64Array;
+  private readonly first: number;
 
-  /** @param parts of what is made, one per signal */
+  /** @param sources in the order of the node's sources */
   constructor(
     private readonly sources: readonly Signal[],
-    private readonly parts: ArrayLike<number>,
+    private readonly blends: Blends,
+    node: number,
     private readonly width: number,
   ) {
     this.one = new Float64Array(width);
+    this.first = blends.first(node);
   }
 
   read(t: number, side: number, out: Float64Array, to: number): void {
-    this.mix((source) => source.read(t, side, this.one, 0), out, to);
+    const { one, sources, width, first } = this;
+    for (let i = 0; i < width; i++) out[to + i] = 0;
+    for (let k = 0; k < sources.length; k++) {
+      sources[k].read(t, side, one, 0);
+      const part = this.blends.at(t, side)[first + k];
+      for (let i = 0; i < width; i++) out[to + i] += part * one[i];
+    }
   }
 
-  integral(t: number, out: Float64Array): void {
-    this.mix((source) => source.integral(t, this.one), out, 0);
+  integral(t: number, out: Float64Array, weight?: Weight): void {
+    const { one, sources, width, first, blends } = this;
+    const constant = blends.course.constant ? blends.at(0, 1) : undefined;
+    for (let i = 0; i < width; i++) out[i] = 0;
+    for (let k = 0; k < sources.length; k++) {
+      if (constant) sources[k].integral(t, one, weight);
+      else sources[k].integral(t, one, (u, side) => (weight?.(u, side) ?? 1) * blends.at(u, side)[first + k]);
+      const part = constant ? constant[first + k] : 1;
+      for (let i = 0; i < width; i++) out[i] += part * one[i];
+    }
   }
 
   pace(t: number, count: number): number {
-    return this.sources.reduce((least, s) => Math.min(least, s.pace(t, count)), Number.POSITIVE_INFINITY);
-  }
-
-  private mix(take: (source: Signal) => void, out: Float64Array, to: number): void {
-    const { one, parts, sources, width } = this;
-    for (let i = 0; i < width; i++) out[to + i] = 0;
-    for (let k = 0; k < sources.length; k++) {
-      take(sources[k]);
-      for (let i = 0; i < width; i++) out[to + i] += parts[k] * one[i];
-    }
+    const { knots } = this.blends.course;
+    let least = Number.POSITIVE_INFINITY;
+    for (let k = 0; k < knots.length && least === Number.POSITIVE_INFINITY; k++) if (knots[k] > t) least = knots[k];
+    return this.sources.reduce((near, s) => Math.min(near, s.pace(t, count)), least);
   }
 }

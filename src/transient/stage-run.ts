@@ -64,7 +64,7 @@ export function stageRun(
         size: stage.size,
         rhs: (t, y, dy) => stage.rhs(from + t, y, dy, side(from + t)),
         pattern: stage.pattern,
-        jacobian: (_, y, entries) => stage.jacobian(y, entries),
+        jacobian: (t, y, entries) => stage.jacobian(from + t, y, entries),
       },
       ask.relative,
       basis.stages,

@@ -17,9 +17,9 @@ export interface Held {
 }
 
 interface Inflow {
-  /** Numbers of bodies here, and of signals from elsewhere, with the part of what enters that each makes. */
-  readonly own: readonly (readonly [body: number, part: number])[];
-  readonly from: readonly (readonly [signal: number, part: number])[];
+  /** Numbers of bodies here, and of signals from elsewhere, and where the part of what enters that each makes is. */
+  readonly own: readonly (readonly [body: number, place: number])[];
+  readonly from: readonly (readonly [signal: number, place: number])[];
 }
 
 /**
@@ -33,7 +33,7 @@ export class Stage {
   readonly pattern: { readonly size: number; readonly start: Int32Array; readonly column: Int32Array };
   private readonly signals: readonly Signal[];
   private readonly inflow: readonly Inflow[];
-  private readonly through: Float64Array;
+  private readonly nodes: readonly number[];
   private readonly width: number;
   private readonly outside: Float64Array;
   private readonly leaving: Float64Array;
@@ -41,11 +41,17 @@ export class Stage {
   private readonly flowing: Float64Array;
   /** Entries of the Jacobian that flows make, and where those of reaction go, state by state. */
   private readonly fixed: Float64Array;
+  /** The flows that `fixed` is for. */
+  private stamp = Number.NaN;
   private readonly places: Int32Array;
   private readonly slope: Float64Array;
 
-  constructor(scene: Scene, nodes: readonly number[], signalOf: (source: number) => Signal) {
-    const { width, plant, follow } = scene;
+  constructor(
+    private readonly scene: Scene,
+    nodes: readonly number[],
+    signalOf: (source: number) => Signal,
+  ) {
+    const { width, plant, follow, blends } = scene;
     this.width = width;
     let first = 0;
     this.held = nodes.map((node): Held => {
@@ -60,7 +66,7 @@ export class Stage {
       return own;
     });
     this.size = first * width;
-    this.through = Float64Array.from(nodes, (node) => plant.columns.inflow[node]);
+    this.nodes = nodes;
     const place = new Map(nodes.map((node, b) => [node, b]));
     const signals: Signal[] = [];
     const numbers = new Map<number, number>();
@@ -68,8 +74,9 @@ export class Stage {
       const own: [number, number][] = [];
       const from: [number, number][] = [];
       if (!(plant.columns.inflow[node] > 0)) return { own, from };
-      for (const [source, part] of scene.blend(node)) {
+      blends.sources(node).forEach((source, j) => {
         const body = place.get(source);
+        const part = blends.first(node) + j;
         if (body !== undefined) own.push([body, part]);
         else {
           let k = numbers.get(source);
@@ -79,7 +86,7 @@ export class Stage {
           }
           from.push([k, part]);
         }
-      }
+      });
       return { own, from };
     });
     this.signals = signals;
@@ -88,11 +95,12 @@ export class Stage {
     this.entering = new Float64Array(width);
     this.flowing = new Float64Array(this.size);
     this.slope = new Float64Array(width * width);
-    const rows = this.flowRows(first);
+    const rows = this.flowRows(0);
     this.pattern = this.patternOf(rows);
     this.fixed = new Float64Array(this.pattern.column.length);
     this.places = new Int32Array(first * width * width);
-    this.fill(rows);
+    this.place();
+    this.fill(rows, 0);
   }
 
   /** Writes what leaves a body: into[at ...]. */
@@ -122,20 +130,24 @@ export class Stage {
 
   /** Adds what flows do to each state. */
   private addFlow(t: number, x: Float64Array, dx: Float64Array, side: number): void {
-    const { width, held, signals, outside, leaving, entering, inflow, through } = this;
+    const { width, held, signals, outside, leaving, entering, inflow, nodes, scene } = this;
+    const { node: through } = scene.course.at(t, side);
+    const parts = scene.blends.at(t, side);
     for (let k = 0; k < signals.length; k++) signals[k].read(t, side, outside, k * width);
     for (let b = 0; b < held.length; b++) this.outflow(b, x, leaving, b * width);
     for (let b = 0; b < held.length; b++) {
       const { first, states, realization, volume } = held[b];
       const { own, from } = inflow[b];
-      const q = through[b];
+      const q = through[nodes[b]];
       entering.fill(0);
       for (let e = 0; e < own.length; e++) {
-        const [body, part] = own[e];
+        const [body, place] = own[e];
+        const part = parts[place];
         for (let i = 0; i < width; i++) entering[i] += part * leaving[body * width + i];
       }
       for (let e = 0; e < from.length; e++) {
-        const [signal, part] = from[e];
+        const [signal, place] = from[e];
+        const part = parts[place];
         for (let i = 0; i < width; i++) entering[i] += part * outside[signal * width + i];
       }
       if (!realization) {
@@ -159,8 +171,9 @@ export class Stage {
     }
   }
 
-  jacobian(x: Float64Array, entries: Float64Array): void {
+  jacobian(t: number, x: Float64Array, entries: Float64Array): void {
     const { width, slope, places } = this;
+    if (this.scene.course.at(t, 1).stamp !== this.stamp) this.fill(this.flowRows(t), t);
     entries.set(this.fixed);
     for (const { first, states, kinetics } of this.held) {
       for (let s = first; s < first + states; s++) {
@@ -195,16 +208,20 @@ export class Stage {
     }
   }
 
-  /** How what flows moves each state with each other, 1/s: the same for every component. */
-  private flowRows(count: number): Map<number, number>[] {
-    const rows = Array.from({ length: count }, (_, s) => new Map<number, number>([[s, 0]]));
+  /** How what flows moves each state with each other at a time, 1/s: the same for every component. */
+  private flowRows(t: number): Map<number, number>[] {
+    const { blends, course } = this.scene;
+    const { node: through } = course.at(t, 1);
+    const parts = blends.at(t, 1);
+    const rows = Array.from({ length: this.size / this.width }, (_, s) => new Map<number, number>([[s, 0]]));
     const add = (s: number, j: number, a: number): void => {
       if (a !== 0) rows[s].set(j, (rows[s].get(j) ?? 0) + a);
     };
     this.held.forEach(({ first, states, realization, volume }, b) => {
-      const q = this.through[b];
+      const q = through[this.nodes[b]];
       const bring = (s: number, a: number): void => {
-        for (const [body, part] of this.inflow[b].own) {
+        for (const [body, place] of this.inflow[b].own) {
+          const part = parts[place];
           const of = this.held[body];
           if (!of.realization) add(s, of.first, a * part);
           else for (let k = 0; k < of.states; k++) add(s, of.first + k, a * part * of.realization.output[k]);
@@ -247,15 +264,25 @@ export class Stage {
     return { size: this.size, start, column };
   }
 
-  private fill(rows: readonly ReadonlyMap<number, number>[]): void {
-    const { width, pattern, fixed, places } = this;
+  private place(): void {
+    const { width, pattern, places } = this;
+    for (let row = 0; row < this.size; row++) {
+      const s = Math.floor(row / width);
+      for (let k = pattern.start[row]; k < pattern.start[row + 1]; k++) {
+        const j = Math.floor(pattern.column[k] / width);
+        if (j === s) places[row * width + pattern.column[k] - j * width] = k;
+      }
+    }
+  }
+
+  private fill(rows: readonly ReadonlyMap<number, number>[], t: number): void {
+    const { width, pattern, fixed } = this;
+    this.stamp = this.scene.course.at(t, 1).stamp;
     rows.forEach((row, s) => {
       for (let i = 0; i < width; i++) {
         for (let k = pattern.start[s * width + i]; k < pattern.start[s * width + i + 1]; k++) {
           const j = Math.floor(pattern.column[k] / width);
-          const c = pattern.column[k] - j * width;
-          if (c === i) fixed[k] = row.get(j) ?? 0;
-          if (j === s) places[(s * width + i) * width + c] = k;
+          if (pattern.column[k] - j * width === i) fixed[k] = row.get(j) ?? 0;
         }
       }
     });

@@ -11,7 +11,9 @@ import { holdings } from "../reaction/holdings.js";
 import { depleted } from "../reaction/kinetics.js";
 import { steadyState } from "../reaction/steady.js";
 import { type Amounts, amountsOf, closureOf, conservedClosure } from "./balance.js";
-import { changes, feedSignals } from "./inputs.js";
+import { changes } from "./course-line.js";
+import { flowsOf } from "./flows.js";
+import { feedSignals } from "./inputs.js";
 import { Run } from "./run.js";
 import { sceneOf } from "./scene.js";
 import type { Start } from "./start.js";
@@ -34,8 +36,10 @@ export interface TransientOptions {
 /** What leaves a place over time, SI. */
 export interface Course {
   readonly name: string;
-  /** m3/s. */
+  /** m3/s; of one that changes, before. */
   readonly flow: number;
+  /** m3/s at times[k], where flows change. */
+  readonly flows: Float64Array | undefined;
   /** values[k * species + i] at times[k]. */
   readonly values: Float64Array;
   /** K at times[k], where heat is balanced. */
@@ -59,6 +63,8 @@ export interface Transient {
   readonly look: (name: string) => Look;
   /** Writes what all feeds together bring at t, amount per second by species; of a jump, before it. */
   readonly fed: (t: number, out: Float64Array) => void;
+  /** m3/s that a feed brings at t; of a jump, before it. */
+  readonly feedFlow: (feed: string, t: number) => number;
 }
 
 /** Components: the species and, where heat is balanced, the temperature; as many as the array takes. */
@@ -67,6 +73,11 @@ export interface Look {
   at(t: number, out: Float64Array, side?: number): void;
   /** Integral from 0 to t, concentration times s. */
   integral(t: number, out: Float64Array): void;
+  /** m3/s that leave, and the m3 that have by t. */
+  flow(t: number, side?: number): number;
+  volume(t: number): number;
+  /** Amounts that have left by t, of the species. */
+  left(t: number, out: Float64Array): void;
   /** Where the smooth stretch ends that begins at t, s; Infinity where it does not. */
   stretch(t: number): number;
 }
@@ -87,10 +98,10 @@ export interface TransientBalance extends Amounts {
 /**
  * A duty in time: start-up, shut-down, a change of grade, an upset, a batch. It starts with the duty's `contents`; without
  * them, where something that is fed changes in time, in the steady state before that, and else with liquid that holds none of the
- * species. Flows are steady.
+ * species.
  *
  * Cells and dispersed bodies are integrated together (Radau IIA, sparse exact Jacobian, stopping wherever something that enters
- * jumps); tubes are followed as parcels, so that a front stays a front. Relative accuracy is about 1e-8 at the default tolerance.
+ * jumps); tubes are followed as parcels, so that a front stays a front. Volumes stay while flows change. Relative accuracy is about 1e-8 at the default tolerance.
  * @param times s, ascending, from 0
  * @throws RefusedError where the network or the duty holds something that cannot be followed in time yet
  * @see the methods beside their code in `src/transient` and `src/numerics`
@@ -106,7 +117,8 @@ export function transient(
   requireNoExchangers(duty);
   const settings = options.settings ?? {};
   const conditions = conditionsOf(plant, chemistry, duty, settings);
-  const scene = sceneOf(plant, conditions);
+  const flows = flowsOf(plant, duty, settings);
+  const scene = sceneOf(plant, conditions, flows);
   const { species } = conditions;
   const clock = Float64Array.from(times);
   const start = startOf(plant, chemistry, duty, conditions, settings);
@@ -116,7 +128,7 @@ export function transient(
   if (typeof start === "string") return nothing(plant, species, clock, names, start);
   const run = new Run({
     scene,
-    feeds: feedSignals(plant, conditions, duty, settings),
+    feeds: feedSignals(plant, conditions, duty, settings, flows.knots),
     start,
     horizon,
     looks: [...plant.outlets.map((o) => o.node), ...names.map(nodeOf)],
@@ -135,15 +147,16 @@ export function transient(
     const values = new Float64Array(clock.length * n);
     const temperatures = scene.width > n ? new Float64Array(clock.length) : undefined;
     const row = new Float64Array(scene.width);
-    const flows = plant.columns.inflow[node] > 0 || scene.sort[node] === "cell";
+    const seen = plant.columns.inflow[node] > 0 || scene.sort[node] === "cell";
     clock.forEach((t, k) => {
-      if (t > end || !flows) row.fill(Number.NaN);
+      if (t > end || !seen) row.fill(Number.NaN);
       else run.signal(node).read(t, 1, row, 0);
       toSi(row);
       values.set(row.subarray(0, n), k * n);
       if (temperatures) temperatures[k] = row[n];
     });
-    return { name, flow: plant.columns.inflow[node], values, temperatures };
+    const changing = flows.constant ? undefined : clock.map((t) => flows.through(node, t, 1));
+    return { name, flow: plant.columns.inflow[node], flows: changing, values, temperatures };
   };
   const outlets = plant.outlets.map((o) => course(o.name, o.node));
   return {
@@ -155,16 +168,22 @@ export function transient(
     balance: options.balance === false || run.stopped ? undefined : balanceOf(run, plant, conditions),
     stopped: run.stopped && { t: run.stopped.t, why: run.stopped.why, node: plant.columns.nameOf(run.stopped.node) },
     steps: run.stages.reduce((sum, s) => sum + s.run.steps, 0),
+    feedFlow(feed, t) {
+      const k = plant.feeds.findIndex((f) => f.name === feed);
+      return flows.through(scene.sort.length + k, t, -1);
+    },
     fed(t, out) {
       const row = new Float64Array(scene.width);
       out.fill(0);
-      plant.feeds.forEach(({ flow }, k) => {
+      plant.feeds.forEach((_, k) => {
+        const flow = flows.through(scene.sort.length + k, t, -1);
         run.ask.feeds[k].read(t, -1, row, 0);
         for (let i = 0; i < n; i++) out[i] += flow * row[i] * conditions.scale[i];
       });
     },
     look(name) {
-      const signal = run.signal(plant.outlets.find((o) => o.name === name)?.node ?? nodeOf(name));
+      const node = plant.outlets.find((o) => o.name === name)?.node ?? nodeOf(name);
+      const signal = run.signal(node);
       const row = new Float64Array(scene.width);
       return {
         at(t, out, side = 1) {
@@ -175,6 +194,14 @@ export function transient(
         integral(t, out) {
           signal.integral(t, row);
           for (let i = 0; i < out.length; i++) out[i] = row[i] * conditions.scale[i];
+        },
+        flow: (t, side = 1) => flows.through(node, t, side),
+        volume: (t) => flows.passed(node, 0, t),
+        left(t, out) {
+          if (flows.constant) signal.integral(t, row);
+          else signal.integral(t, row, (u, side) => flows.through(node, u, side));
+          const factor = flows.constant ? flows.through(node, 0) : 1;
+          for (let i = 0; i < out.length; i++) out[i] = factor * row[i] * conditions.scale[i];
         },
         stretch(t) {
           signal.read(t, 1, row, 0);
@@ -242,6 +269,7 @@ function nothing(
   const empty = (name: string): Course => ({
     name,
     flow: plant.columns.inflow[plant.exit.get(name) ?? 0],
+    flows: undefined,
     values: new Float64Array(times.length * species.length).fill(Number.NaN),
     temperatures: undefined,
   });
@@ -255,9 +283,13 @@ function nothing(
     stopped: { t: 0, why: "no steady state", node },
     steps: 0,
     fed: (_, out) => out.fill(Number.NaN),
+    feedFlow: () => Number.NaN,
     look: () => ({
       at: (_, out) => out.fill(Number.NaN),
       integral: (_, out) => out.fill(Number.NaN),
+      flow: () => Number.NaN,
+      volume: () => Number.NaN,
+      left: (_, out) => out.fill(Number.NaN),
       stretch: () => Number.POSITIVE_INFINITY,
     }),
   };

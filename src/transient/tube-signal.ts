@@ -1,4 +1,5 @@
 import { passTube } from "../reaction/tube.js";
+import type { Path } from "./path.js";
 import { type PieceBasis, sameTime } from "./pieces.js";
 import { Sampled } from "./sampled.js";
 import type { Scene } from "./scene.js";
@@ -15,8 +16,7 @@ const alike = 1e-14;
 export interface TubeAsk {
   readonly scene: Scene;
   readonly node: number;
-  /** s */
-  readonly delay: number;
+  readonly path: Path;
   readonly inlet: Signal;
   readonly start: Start;
   readonly basis: PieceBasis;
@@ -29,22 +29,28 @@ export interface TubeAsk {
  * What leaves a tube: the parcel that entered one delay ago, reacted on its way (method of characteristics), so that a front
  * that enters leaves as one. What was in it at the start leaves after it has reacted for as long as it was on its way since.
  */
-export function tubeSignal({ scene, node, delay, inlet, start, basis, breaks, longest }: TubeAsk): Sampled {
-  const { width } = scene;
+export function tubeSignal({ scene, node, path, inlet, start, basis, breaks, longest }: TubeAsk): Sampled {
+  const { width, course } = scene;
   const pass = scene.pass(node);
   const kinetics = scene.at(node).tube;
   const entered = new Float64Array(width);
-  const last = { entered: new Float64Array(width).fill(Number.NaN), left: new Float64Array(width), good: false };
+  const last = {
+    entered: new Float64Array(width).fill(Number.NaN),
+    age: Number.NaN,
+    left: new Float64Array(width),
+    good: false,
+  };
   const source = {
-    unit: delay,
+    unit: path.mean,
     breaks,
     longest: (t: number): number => {
-      const then = t - delay;
-      const most = Math.min(longest(t), inlet.pace(then, piecesAtOnce) - then);
-      return then < 0 ? Math.min(most, -then) : most;
+      const then = path.entered(t, 1);
+      const most = Math.min(longest(t), path.leaves(inlet.pace(then, piecesAtOnce), 1) - t);
+      const rest = path.leaves(0, 1) - t;
+      return then < 0 && rest > sameTime * t ? Math.min(most, rest) : most;
     },
     evaluate(t: number, side: number, out: Float64Array): boolean {
-      let then = t - delay;
+      let then = path.entered(t, 1);
       if (Math.abs(then) <= sameTime * t) then = side < 0 ? -1e-300 : 0;
       if (then < 0 && start.is === "contents") {
         out.set(start.holding(node));
@@ -52,13 +58,17 @@ export function tubeSignal({ scene, node, delay, inlet, start, basis, breaks, lo
       }
       inlet.read(then, side, entered, 0);
       // Much of what enters is constant: one parcel stands for all.
-      if (entered.every((x, i) => Math.abs(x - last.entered[i]) <= alike)) {
+      const age = course.constant ? 0 : t - then;
+      if (age === last.age && entered.every((x, i) => Math.abs(x - last.entered[i]) <= alike)) {
         out.set(last.left);
         return last.good;
       }
       last.entered.set(entered);
+      last.age = age;
       last.left.set(entered);
-      last.good = pass ? pass(last.left) : true;
+      // Where flows change no two parcels need be equally long on their way.
+      if (!course.constant) last.good = passTube(kinetics, age, last.left);
+      else last.good = pass ? pass(last.left) : true;
       out.set(last.left);
       return last.good;
     },

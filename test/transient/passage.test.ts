@@ -8,6 +8,9 @@ const lookOf = (f: (t: number) => number): Look => ({
     out[0] = f(t);
   },
   integral: () => undefined,
+  flow: () => Number.NaN,
+  volume: () => Number.NaN,
+  left: () => undefined,
   stretch: (t) => t + 1,
 });
 

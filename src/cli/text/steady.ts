@@ -4,6 +4,7 @@ import { type Figure, temperatureUnit } from "../../reaction/figures.js";
 import type { HeatBalance } from "../../reaction/heat-balance.js";
 import type { Prediction } from "../../reaction/prediction.js";
 import { speciesUnits } from "../../reaction/species-units.js";
+import { changes } from "../../transient/course-line.js";
 import { formatNumber, formatQuantity } from "../../units/format.js";
 import { inUnit } from "../../units/unit.js";
 import { kilowatt } from "../heat.js";
@@ -37,9 +38,7 @@ export function steadyText(plant: Plant, duty: Duty, prediction: Prediction): st
     : [];
   return blocks(
     `${plant.network.title}: ${duty.title}${steady.converged ? "" : " (not converged: best found)"}`,
-    changesInTime(duty)
-      ? "  the steady state before the change that the duty tells of; --transient follows the change"
-      : "",
+    changes(duty) ? "  the steady state before the change that the duty tells of; --transient follows the change" : "",
     // Where nothing is carried there is nothing to tell of places.
     species.length === 0 && !warm
       ? ""
@@ -69,9 +68,6 @@ export function steadyText(plant: Plant, duty: Duty, prediction: Prediction): st
     ]),
   );
 }
-
-/** Does a feed of the duty change in time? */
-const changesInTime = (duty: Duty): boolean => [...duty.feeds.values()].some((f) => (f.courses?.size ?? 0) > 0);
 
 /** Where the heat goes, in words. */
 function heatLines({ released, walls, exchanged, carried, closure }: HeatBalance): (readonly [string, string])[] {

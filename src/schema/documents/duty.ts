@@ -2,50 +2,46 @@ import type { Shape } from "../shape.js";
 import { cleaning } from "./cleaning.js";
 import { choice, column, csv, either, heading, list, name, named, quantity, record, text } from "./common.js";
 
-const varied: Shape = { is: "later", sort: "map", says: "a flow that changes in time" };
-
-const concentration = quantity("molar concentration", "mass concentration", "number concentration");
-
 const mixture = quantity("molar concentration", "mass concentration", "number concentration", "temperature");
 
-/** A feed value that changes in time: by an upset, or as it was logged. */
-const course: Shape = {
+/** A value that changes in time: by an upset, or as it was logged. */
+const course = (level: Shape, what: string, unit: string, from: string, to: string): Shape => ({
   is: "depends",
   on: "file",
   present: record({
     file: {
       shape: text,
-      says: "The log of this feed value, a CSV file relative to this one. Between rows it goes in a straight line; before the first it is as in the first, after the last as in the last.",
+      says: "The log of this value, a CSV file relative to this one. Between rows it goes in a straight line; before the first it is as in the first, after the last as in the last.",
       required: true,
       example: "feed-a.csv",
     },
     time: { ...cleaning.time, required: true },
     value: {
-      shape: column("the concentrations", {
-        unit: { shape: text, says: "The unit of the concentrations in that column.", example: "mol/L" },
+      shape: column(what, {
+        unit: { shape: text, says: "The unit of the values in that column.", example: unit },
       }),
-      says: "The column of concentrations, with its unit. Rows without a value are bridged by a straight line.",
+      says: "The column of values, with its unit. Rows without a value are bridged by a straight line.",
       required: true,
-      example: "{column: A, unit: mol/L}",
+      example: `{column: A, unit: ${unit}}`,
     },
     csv,
   }),
   absent: record({
     from: {
-      shape: concentration,
+      shape: level,
       says: "What it is before, and after an upset that ends.",
       required: true,
-      example: "1 mol/L",
+      example: from,
     },
-    to: { shape: concentration, says: "What it jumps to.", required: true, example: "1.3 mol/L" },
+    to: { shape: level, says: "What it jumps to.", required: true, example: to },
     start: { shape: quantity("time"), says: "When, on the clock of the transient.", default: "0 s", example: "10 min" },
     lasting: {
       shape: quantity("time"),
-      says: "For how long. Without it the change is for good: a change of grade or, to 0, a shut-down of what is fed.",
+      says: "For how long. Without it the change is for good: a change of grade or, to 0, a shut-down.",
       example: "45 s",
     },
   }),
-};
+});
 
 /** One operating point. */
 export const dutyShape = record({
@@ -56,8 +52,11 @@ export const dutyShape = record({
     example: "../../shared/chemistry/hydrolysis.yaml",
   },
   flows: {
-    shape: named(either(quantity("flow"), varied), "dotted"),
-    says: "Flows by feed, where they are not those of the network.",
+    shape: named(
+      either(quantity("flow"), course(quantity("flow"), "the flows", "L/min", "10 L/min", "0 L/min")),
+      "dotted",
+    ),
+    says: "Flows by feed, where they are not those of the network. A flow may change in time: `feed: {from: 10 L/min, to: 0 L/min, start: 10 min, lasting: 5 min}` (an upset, a shut-down, a pump that trips), or a logged table; a steady state is then that before the change. Volumes stay as they are, so all flows of the network follow at once, as its streams say; bodies that are passed along, and stays in laminar flow and cascades, go by the volume that has passed. A feed that stops is taken to go on at a thousandth of a millionth of its flow: what stands still has no direction.",
     example: "{feed: 11.5 L/min}",
   },
   with: {
@@ -66,12 +65,12 @@ export const dutyShape = record({
     example: "{k2: 0.4 L/mol/min ± 20 %}",
   },
   feeds: {
-    says: "What each feed brings: concentrations by species. A species that is not named is not there. Every feed of the network must be named where there is a chemistry; `{}` is clean liquid. `temperature` is that of the feed, which `heat` needs. A concentration may change in time: `A: {from: 1 mol/L, to: 1.3 mol/L, start: 10 min, lasting: 45 s}`, or a logged table; a steady state is then that before the change.",
+    says: "What each feed brings: concentrations by species. A species that is not named is not there. Every feed of the network must be named where there is a chemistry; `{}` is clean liquid. `temperature` is that of the feed, which `heat` needs. A concentration, and with `heat` the temperature, may change in time: `A: {from: 1 mol/L, to: 1.3 mol/L, start: 10 min, lasting: 45 s}`, or a logged table; a steady state is then that before the change.",
     example: "{feed: {A: 1 mol/L ± 1 %, B: 1.2 mol/L}}",
     shape: named(
       {
         is: "named",
-        each: either(mixture, course),
+        each: either(mixture, course(mixture, "the values", "mol/L", "1 mol/L", "1.3 mol/L")),
         keys: "names",
       },
       "dotted",
