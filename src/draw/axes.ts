@@ -76,7 +76,7 @@ export function bottomAxis(axis: Axis, plot: Box, words: string, bare = false): 
     parts.push(text(x, y + 16, label, "quiet", "middle"));
     free = x + half;
   }
-  if (!bare && words !== "") parts.push(text(plot.x + plot.width, y + 32, words, "quiet", "end"));
+  if (!bare && words !== "") parts.push(text(plot.x + plot.width, y + 32, withUnitSet(words), "quiet", "end"));
   return parts.join("");
 }
 
@@ -88,7 +88,13 @@ export function leftAxis(axis: Axis, plot: Box, words: string): Svg {
     text(plot.x - 6, axis.at(tick) + 3.5, labels[k], "quiet", "end"),
   ]);
   const wide = leftRoom(axis) - 6;
-  return [...parts, words === "" ? "" : text(plot.x - wide, plot.y - 9, words, "quiet")].join("");
+  return [...parts, words === "" ? "" : text(plot.x - wide, plot.y - 9, withUnitSet(words), "quiet")].join("");
+}
+
+/** "volume, m3" with its unit set properly. */
+function withUnitSet(words: string): string {
+  const cut = words.lastIndexOf(", ") + 2;
+  return cut < 2 ? words : words.slice(0, cut) + typeset(words.slice(cut));
 }
 
 /** Room that the numbers left of a plot need, px. */

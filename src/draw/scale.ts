@@ -54,13 +54,14 @@ export function amount(si: number, unit: SheetUnit, digits = 3): string {
   return typeset(formatQuantity(si, asUnit, digits));
 }
 
-/** Sets units properly: `m3` becomes m³, `K/(m2 s)` K/(m² s), and the space before the unit a thin one. */
+/** Sets units properly: `m3` becomes m³, `K/(m2 s)` K/(m² s), `degC` °C, and the space before the unit a thin one. */
 export function typeset(written: string): string {
   return written
     .replace(
       /\b((?:[kcmdµu]?m)|ft|in|yd)([23])\b/g,
       (_, unit: string, power: string) => unit + (power === "2" ? "²" : "³"),
     )
+    .replace(/\bdeg([CF])\b/g, "°$1")
     .replace(
       /(\d)e([+-]?)(\d+)/g,
       (_, digit: string, sign: string, power: string) => `${digit}×10${raised(sign + power)}`,

@@ -174,6 +174,7 @@ function drawingRules(colour: (name: keyof Palette) => string): readonly Rule[] 
     [[".point"], `fill:none;stroke:${colour("quiet")};stroke-width:1`],
     [[".point.dense"], "stroke-width:1.4;stroke-linecap:round"],
     [[".point.out"], `stroke:${colour("hatch")};stroke-dasharray:1.5 1.5`],
+    [[".dots"], `fill:${colour("wall")};stroke:none`],
     [[".residual"], `stroke:${colour("wall")};stroke-width:1.25`],
     [[".bar"], `fill:none;stroke:${colour("wall")};stroke-width:3`],
     [[".area"], `fill:${colour("old")};fill-opacity:.22`],

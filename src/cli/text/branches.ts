@@ -1,6 +1,6 @@
 import type { nextTurns, Turn } from "../../reaction/branches.js";
 import { cautionsFor } from "../../report/cautions.js";
-import type { BranchPlot } from "../../report/study/branch-figure.js";
+import { type BranchPlot, turnWords } from "../../report/study/branch-figure.js";
 import { formatQuantity } from "../../units/format.js";
 import type { Unit } from "../../units/unit.js";
 import { reportedText } from "./steady.js";
@@ -25,7 +25,7 @@ export function branchesText(
     .map((turn) => [
       quantity(turn.at),
       wordsOf(turn),
-      `${turn.at < value ? "-" : "+"}${formatQuantity(Math.abs(turn.at - value), difference)}`,
+      `${turn.at < value ? "\u2212" : "+"}${formatQuantity(Math.abs(turn.at - value), difference)}`,
       ...figuresAt({ state: turn.state, at: turn.at, stable: undefined }).map(reportedText),
     ]);
   const right = (words: string) => ({ title: words, align: "right" as const });
@@ -59,13 +59,4 @@ export function branchesText(
 }
 
 /** "ignites as it rises". */
-export function wordsOf({ what, as }: Turn): string {
-  const happens = {
-    ignites: "ignites",
-    "goes out": "goes out",
-    ends: "the state ends",
-    swings: "begins to swing",
-    "gives way": "gives way to another state",
-  }[what];
-  return `${happens} as it ${as}`;
-}
+export const wordsOf = ({ what, as }: Turn): string => `${turnWords(what)} as it ${as}`;

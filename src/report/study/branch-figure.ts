@@ -1,8 +1,10 @@
 import { type CurvesOptions, plotStacked } from "../../draw/curves.js";
 import type { Plotted } from "../../draw/plotted.js";
+import { typeset } from "../../draw/scale.js";
 import type { Duty } from "../../model/duty.js";
-import type { Branches, BranchPoint } from "../../reaction/branches.js";
+import type { Branches, BranchPoint, Turn } from "../../reaction/branches.js";
 import { type Figure, temperatureUnit } from "../../reaction/figures.js";
+import { formatQuantity } from "../../units/format.js";
 import { inUnit, type Unit } from "../../units/unit.js";
 import { readingUnit } from "./estimate.js";
 
@@ -42,10 +44,7 @@ export function plotBranches(plot: BranchPlot, options: CurvesOptions = {}): Plo
         xs.push(Number.NaN);
         ys.push(Number.NaN);
       });
-      // Its name stands at the last point: the one farthest right.
-      const drawn = xs.filter((_, i) => Number.isFinite(ys[i]));
-      const turned = drawn.length > 0 && drawn[drawn.length - 1] < drawn[0];
-      return { label, x: turned ? xs.reverse() : xs, y: turned ? ys.reverse() : ys };
+      return { label, beside: true, x: xs, y: ys };
     };
     const lines = [
       line("stable", (s) => s === true),
@@ -58,7 +57,9 @@ export function plotBranches(plot: BranchPlot, options: CurvesOptions = {}): Plo
       y: `${name}${shown.name ? `, ${shown.name}` : ""}`,
       free: name.startsWith("temperature"),
       lines,
+      upright: { at: x(input.value), label: typeset(`now ${formatQuantity(input.value, input.unit, 4)}`) },
       points: {
+        names: turns.map((t) => typeset(`${turnWords(t.what)} ${formatQuantity(t.at, input.unit, 4)}`)),
         x: turns.map((t) => x(t.at)),
         y: turns.map((t) => y(figuresAt({ at: t.at, state: t.state, stable: undefined })[k])),
       },
@@ -66,3 +67,13 @@ export function plotBranches(plot: BranchPlot, options: CurvesOptions = {}): Plo
   });
   return plotStacked(title, panels, options);
 }
+
+/** What happens to the state that a vessel runs at: "ignites". */
+export const turnWords = (what: Turn["what"]): string =>
+  ({
+    ignites: "ignites",
+    "goes out": "goes out",
+    ends: "the state ends",
+    swings: "begins to swing",
+    "gives way": "gives way to another state",
+  })[what];

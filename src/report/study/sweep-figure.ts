@@ -7,6 +7,8 @@ import { readingUnit } from "./estimate.js";
 
 /** More lines than this cannot be told apart: every n-th is drawn, the table has them all. */
 const mostLines = 6;
+/** More computed points than this are a line by themselves. */
+const mostDots = 40;
 
 /**
  * Every figure of a sweep over its first input, one plot each; where there is a second input, one line for each of its values.
@@ -55,6 +57,9 @@ export function plotSweep({ operation, axes, points, jumps }: Sweep, options: Cu
         unnamed: !second,
         x: shape.map((p) => inUnit(p.x, input.unit)),
         y: shape.map((p) => p.y),
+        ...(along.length <= mostDots
+          ? { dots: { x: first.values.map((v) => inUnit(v, input.unit)), y: along.map(value) } }
+          : {}),
         ...(banded && !second ? { band: { low: shape.map((p) => p.low), high: shape.map((p) => p.high) } } : {}),
       };
     });
