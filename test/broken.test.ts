@@ -115,6 +115,7 @@ const shownBy: Record<keyof typeof runEntries, string> = {
   "only-noise-to-fit": "fit/nothing.test.ts",
   "explains-nothing": "fit/nothing.test.ts",
   "trial-contradicted": "fit/reaction.test.ts",
+  "lack-of-fit": "fit/replicates.test.ts",
   "spreads-differ": "fit/run-codes.test.ts",
   "too-few-points": "fit/run-codes.test.ts",
   "no-start": "fit/run-codes.test.ts",

@@ -7,14 +7,18 @@ import type { Fit } from "../fit/result.js";
 import { parseNetwork } from "../parse/network.js";
 import { parseTrial } from "../parse/trial.js";
 import { collector } from "../problems/report.js";
+import { acrossOf } from "../study/across.js";
+import { dimensions } from "../units/dimension.js";
 import { formatNumber } from "../units/format.js";
 import { inUnit, type Unit } from "../units/unit.js";
 import type { Context } from "./context.js";
 import { requireParameters } from "./free.js";
 import type { ExitStatus } from "./io.js";
+import { acrossJson } from "./json/across.js";
 import { fitJson } from "./json/fit.js";
 import { InputError, type Outcome, UsageError } from "./outcome.js";
 import { progressOn } from "./progress.js";
+import { acrossText } from "./text/across.js";
 import { fitText } from "./text/fit.js";
 import { curvesOn } from "./text/plot.js";
 import { blocks } from "./text/table.js";
@@ -80,10 +84,12 @@ export async function fitCommand(file: string, options: FitOptions, { inputs, io
     sure && (options.further || cannotBeTold(outcome.fit))
       ? (await import("./further.js")).beyondFit(network, trials, outcome.fit, options)
       : undefined;
+  const across = sure ? acrossOf(network, trials, options.seed) : undefined;
   return {
     status,
     text: blocks(
       fitText(network.title, outcome.fit, refits),
+      across && acrossText(across),
       pictureOf(outcome.fit, network.units.time, io),
       beyond?.text,
       writing?.text,
@@ -92,6 +98,7 @@ export async function fitCommand(file: string, options: FitOptions, { inputs, io
       ok: status === 0,
       network: network.title,
       ...fitJson(outcome.fit, network.units.time, refits),
+      ...(across ? { across: acrossJson(across, network.units.unitFor(dimensions.volume)) } : {}),
       ...beyond?.json,
       ...(writing ? { written: writing.written } : {}),
     },

@@ -16,7 +16,7 @@ export interface Distribution {
  * E = c / area and its integral for a pulse (E straight between points, so F is a parabola there); F and its slope for
  * a step. The last point's F is short of 1 by what the tail holds.
  */
-export function distributionOf(response: Response, moments: RawMoments): Distribution {
+export function distributionOf(response: Response, moments: Pick<RawMoments, "area">): Distribution {
   const { time, value, tail } = response;
   const n = time.length;
   const E = new Float64Array(n);

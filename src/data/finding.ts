@@ -1,3 +1,5 @@
+import { acrossWording } from "./across-wording.js";
+
 /** What a curve says, or cannot say. Every sentence stands on numbers: they are in `evidence`. */
 export interface Finding {
   readonly code: FindingCode;
@@ -22,6 +24,7 @@ export function finding(code: FindingCode, at: string, evidence: string): Findin
 
 /** Findings of the data alone, in one place. */
 const wording = {
+  ...acrossWording,
   "no-signal": {
     weight: "stop",
     message: "the reading never changes: there is no curve to read",

@@ -250,7 +250,7 @@ function effectiveVolume(flow: Known, mean: number | undefined, meanError: numbe
 }
 
 /** What flows count: as the vessel has it; else as the day's flow is written. */
-function basisOf(trial: Trial, { volumeUnit }: MomentsOptions): Basis {
+export function basisOf(trial: Trial, { volumeUnit }: MomentsOptions): Basis {
   if (volumeUnit) return sameDimension(volumeUnit.dimension, dimensions.mass) ? "mass" : "volume";
   const [flow] = [...trial.flows.values()];
   return flow ? basisOfFlow(flow.dimension) : "volume";
@@ -268,7 +268,7 @@ function volumeUnitOf(trial: Trial, options: MomentsOptions): Unit {
 const liter: Unit = { name: "L", factor: 1e-3, offset: 0, dimension: dimensions.volume };
 
 /** A level dosed into one of several feeds comes out thinned by the others. */
-function dilutionOf(at: string, { feeds }: MomentsOptions): number {
+export function dilutionOf(at: string, { feeds }: MomentsOptions): number {
   const own = feeds?.get(at);
   return own === undefined || !feeds ? 1 : own / [...feeds.values()].reduce((sum, f) => sum + f, 0);
 }

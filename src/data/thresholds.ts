@@ -4,7 +4,7 @@
  * and printed in the manual. Change the version with any of them.
  */
 export const thresholds = {
-  version: 1,
+  version: 2,
   /** Standard errors that a departure must exceed. */
   sure: 3,
   /** The line through ln W: from one share still to come to another. */
@@ -33,4 +33,23 @@ export const thresholds = {
   /** Half the time from 16 to 84 % over the middle time: below it near plug flow. Variance over squared mean, within: well mixed. */
   plug: 0.22,
   mixed: [0.85, 1.2],
+  /** Comparing the curves of several trials, each counted in its own half time. */
+  across: {
+    /** Flows count as the same up to this ratio, as different from that on. */
+    flowSame: 1.1,
+    flowRatio: 1.3,
+    /** Curves coincide where F of both surely differs by less than this everywhere; they differ where noise as large has this chance, by that much at least. */
+    margin: 0.05,
+    chance: 0.01,
+    least: 0.01,
+    /** Standard errors by which a spread grows, a tail is longer, or volumes differ. */
+    sure: 3,
+    /** Share of a curve that may lie beyond its record. */
+    tailMost: 0.1,
+    /** Draws of the noise; points that a long log is brought down to. */
+    draws: 60,
+    points: 240,
+    /** Effective volumes (flow times mean) count as the same within this share, whatever their errors. */
+    volume: 0.05,
+  },
 } as const;

@@ -1,6 +1,6 @@
 import { normalCdf, studentTQuantile } from "../numerics/distributions.js";
 import type { Unit } from "../units/unit.js";
-import type { Resampling } from "./resample.js";
+import type { Refits, Resampling } from "./resample.js";
 import type { Fit } from "./result.js";
 
 /** What the refits of a bootstrap say of every parameter. */
@@ -20,7 +20,10 @@ export interface BootstrapParameter {
   readonly name: string;
   readonly unit: Unit;
   readonly standardError: number;
-  /** Percentiles of the refits, 2.5 and 97.5 or so far beyond them as Student's t lies beyond the normal distribution. */
+  /**
+   * Percentiles of the refits, 2.5 and 97.5 or so far beyond them as Student's t lies beyond the normal distribution. A refit whose
+   * front lies between two readings counts with the end of that gap.
+   */
   readonly interval95: readonly [number, number];
   readonly median: number;
 }
@@ -29,14 +32,14 @@ export interface BootstrapParameter {
 export const fewestRefits = 40;
 
 /**
- * @param rows  values of the refits in the order of `fit.parameters`, SI; undefined where one did not converge
+ * @param rows  refits in the order of `fit.parameters`, SI, as `Refits` gives them; undefined where one did not converge
  * @see percentile intervals: B. Efron, R. Tibshirani, An Introduction to the Bootstrap, Chapman & Hall 1993, ch. 13; moved outwards for the degrees of freedom:
  * T. C. Hesterberg, Am. Stat. 69 (2015) 371-386
  */
 export function bootstrapOf(
   fit: Fit,
   asked: number,
-  how: { readonly resampling: Resampling; readonly block: number },
+  how: Pick<Refits, "resampling" | "block" | "between">,
   rows: readonly (readonly number[] | undefined)[],
 ): Bootstrap {
   const good = rows.filter((row) => row !== undefined);
@@ -45,12 +48,17 @@ export function bootstrapOf(
     const values = Float64Array.from(good, (row) => row[j]).sort();
     const mean = values.reduce((sum, v) => sum + v, 0) / values.length;
     const square = values.reduce((sum, v) => sum + (v - mean) ** 2, 0);
+    const place = how.between.indexOf(j);
+    const ends = (side: 0 | 1): Float64Array =>
+      place < 0
+        ? values
+        : Float64Array.from(good, (row) => row[fit.parameters.length + 2 * place + side] ?? row[j]).sort();
     const told = good.length >= fewestRefits;
     return {
       name,
       unit,
       standardError: good.length > 1 ? Math.sqrt(square / (good.length - 1)) : Number.NaN,
-      interval95: told ? [quantile(values, outer), quantile(values, 1 - outer)] : [Number.NaN, Number.NaN],
+      interval95: told ? [quantile(ends(0), outer), quantile(ends(1), 1 - outer)] : [Number.NaN, Number.NaN],
       median: quantile(values, 0.5),
     };
   });

@@ -26,8 +26,8 @@ export interface Estimates {
   readonly t: number;
   /** Variance of one weighted residual. */
   readonly variance: number;
-  /** By parameter: what autocorrelation stretches its interval by, 1 where there is none. */
-  readonly stretch: readonly number[];
+  /** What residuals that hang together make of the variance along a change of the weighted curve, over `variance`; undefined where they do not. */
+  readonly along: ((change: Float64Array) => number) | undefined;
   /** By coordinate: how all unknowns of the search move with it, the others at their best, and its standard error; u. */
   readonly ways: readonly { readonly along: Float64Array; readonly error: number }[];
   /** Standard deviation that uncertain constants bring to each parameter, SI. */
@@ -79,11 +79,6 @@ export function estimatesOf({ problem, x, at }: Settled): Estimates {
   });
   const told = hanging ? hanging.freedom : freedom;
   const t = told > 0 ? studentTQuantile(0.975, told) : Number.NaN;
-  const stretch = setup.coordinates.map((_, j) => {
-    const ratio = hanging ? Math.sqrt(hanging.covariance[j * plain.n + j] / plainAt(j, j)) : 1;
-    const all = Math.sqrt(setup.observations / autocorrelation.effective);
-    return !hanging || hanging.restsOn[j] >= 4 ? ratio : Math.max(all, ratio || 0);
-  });
   const uncut = setup.coordinates.map((c, j): readonly [number, number] | undefined => {
     const half = t * Math.sqrt(wideAt(j, j)) * slopes[j];
     const value = c.toSi(x[j]);
@@ -120,7 +115,7 @@ export function estimatesOf({ problem, x, at }: Settled): Estimates {
     uncut,
     t,
     variance,
-    stretch,
+    along: hanging && ((change) => (hanging.variance / variance) * hanging.along(change)),
     ways: setup.coordinates.map((_, j) => ({
       along: Float64Array.from(x, (_, i) => whole.inverse[i * whole.n + j] / whole.inverse[j * whole.n + j]),
       error: Math.sqrt(variance * whole.inverse[j * whole.n + j]),

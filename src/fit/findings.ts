@@ -4,7 +4,7 @@ import { type Code, type DataOf, problem } from "../problems/report.js";
 import { formatQuantity } from "../units/format.js";
 import type { Estimates } from "./estimates.js";
 import type { NotLinear } from "./profiles.js";
-import type { FitFinding, FittedProfile, FittedReading, FoundOptimum } from "./result.js";
+import type { FitFinding, FittedProfile, FittedReading, FoundOptimum, LackOfFit } from "./result.js";
 import type { Setup } from "./setup.js";
 
 /** What the findings look at. */
@@ -19,6 +19,7 @@ export interface Ended {
   readonly profiles: readonly FittedProfile[];
   /** Parameters whose linear interval does not hold, where there are no profiles. */
   readonly notLinear: readonly NotLinear[];
+  readonly lackOfFit: LackOfFit | undefined;
 }
 
 /** Everything that a reader of the fit must know, the gravest first. */
@@ -27,6 +28,7 @@ export function findingsOf(ended: Ended): FitFinding[] {
     ...howItEnded(ended),
     ...explainsNothing(ended),
     ...contradicted(ended),
+    ...lacking(ended),
     ...cannotTell(ended),
     ...bounds(ended),
     ...crooked(ended),
@@ -208,6 +210,17 @@ function contradicted(e: Ended): FitFinding[] {
     const data = { trial: trial.title, key: worst.key, off: most, alone: trials.length === 1 };
     return [say(e, "trial-contradicted", data, [worst.key], { chiSquare: square, points: count, off: most })];
   });
+}
+
+/** The chance below which a network is said to miss what repeats show. */
+const unlikely = 0.01;
+
+function lacking(e: Ended): FitFinding[] {
+  const { lackOfFit: lack } = e;
+  if (!lack || !(lack.p < unlikely)) return [];
+  const { f, p, readings, moments, pure, lack: rest } = lack;
+  const evidence = { F: f, p, freedom: rest.freedom, pureFreedom: pure.freedom, readings, moments };
+  return [say(e, "lack-of-fit", { times: Math.sqrt(f), readings, p }, [], evidence)];
 }
 
 /** The middle of the correlations of neighbours. */

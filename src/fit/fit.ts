@@ -22,6 +22,7 @@ import { prepare } from "./prepare.js";
 import { type Problem as LinearProblem, problemWith } from "./problem.js";
 import { notLinear, profilesOf } from "./profiles.js";
 import { cannotFollow } from "./reacting-model.js";
+import { lackOfFit } from "./replicates.js";
 import type { Fit, FittedParameter, FittedReading, FoundOptimum } from "./result.js";
 import { descend, type Effort, fully, type Optimum, type SearchResult, searchFrom, type Watch } from "./search.js";
 import { type Settled, settle } from "./settle.js";
@@ -184,6 +185,15 @@ function resultOf(setup: Setup, settled: Settled, found: SearchResult, profile: 
   const { significant, gain, strands, effective } = estimates.autocorrelation;
   const readings = readingsOf(setup, settled);
   const told = converged && !watch.cancelled();
+  const lack = lackOfFit({
+    trials: setup.trials,
+    blocks: setup.blocks,
+    readings,
+    env: setup.env,
+    terms: problem.projectors.map((p) => p.terms),
+    left: { sum: at.ofAll, freedom: estimates.freedom },
+    apart: setup.coordinates.some((c) => c.trial !== undefined),
+  });
   const profiles = profile && told ? profilesOf(settled, estimates, watch) : undefined;
   const rises = found.close?.standsFor === problem ? found.close.problem : problem;
   const notHolding = told && !profiles ? notLinear(rises, x, estimates, watch) : [];
@@ -213,6 +223,7 @@ function resultOf(setup: Setup, settled: Settled, found: SearchResult, profile: 
     readings,
     held: setup.held.map((h, j) => ({ says: h.says, deviations: x[n + j] ?? 0 })),
     ...(profiles ? { profiles } : {}),
+    ...(lack ? { lackOfFit: lack } : {}),
     findings: findingsOf({
       setup,
       estimates,
@@ -222,6 +233,7 @@ function resultOf(setup: Setup, settled: Settled, found: SearchResult, profile: 
       cancelled: found.cancelled,
       profiles: profiles ?? [],
       notLinear: notHolding,
+      lackOfFit: lack,
     }),
   };
 }

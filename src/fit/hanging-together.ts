@@ -12,10 +12,12 @@ export interface HangingTogether {
   /** Degrees of freedom of that variance. */
   readonly freedom: number;
   /**
-   * By unknown: readings that its value rests on. Where a front stands at a sample that is one or two, and what linear theory says
-   * of how their errors hang together holds for no further than that sample.
+   * What hanging together makes of the variance of residuals along a change of the fitted curve, over that of independent ones:
+   * v'Vv / v'v. Along a change that linear theory knows it is what widens the linear interval; where a front crosses a sample the
+   * change lies in one reading, and there is nothing for it to hang together with.
+   * @param change  of the weighted curve, one per row
    */
-  readonly restsOn: Float64Array;
+  along(change: Float64Array): number;
 }
 
 /**
@@ -63,18 +65,9 @@ export function hangingTogether(
       covariance[i * n + j] = variance * entry;
     }
   }
-  const restsOn = Float64Array.from({ length: n }, (_, j) => participation(basis, ways, j));
-  return { covariance, variance, freedom: Math.max(2, effectiveForVariance - p), restsOn };
-}
-
-/** (sum w^2)^2 / sum w^4 of the weights with which readings make an unknown. */
-function participation(basis: readonly Float64Array[], ways: readonly Float64Array[], j: number): number {
-  let [square, fourth] = [0, 0];
-  for (let i = 0; i < (basis[0]?.length ?? 0); i++) {
-    let w = 0;
-    for (let k = 0; k < basis.length; k++) w += ways[k][j] * basis[k][i];
-    square += w * w;
-    fourth += w ** 4;
-  }
-  return square ** 2 / fourth;
+  const along = (change: Float64Array): number => {
+    const square = dot(change, change);
+    return square > 0 ? dot(change, times(change)) / square : 1;
+  };
+  return { covariance, variance, freedom: Math.max(2, effectiveForVariance - p), along };
 }

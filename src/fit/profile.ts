@@ -1,4 +1,4 @@
-import type { Problem } from "./problem.js";
+import type { Evaluation, Problem } from "./problem.js";
 import { closely, descend, type Watch } from "./search.js";
 import type { Settled } from "./settle.js";
 import { delayWalks, withCoordinate } from "./starts.js";
@@ -18,7 +18,7 @@ export type ProfileEnd =
 export interface Profile {
   /** Ascending; the optimum among them. */
   readonly at: readonly number[];
-  /** (S - least S) / variance at each: the square of the profile t. */
+  /** (S - least S) / variance at each, the variance that of residuals along the change of the curve: the square of the profile t. */
   readonly rise: readonly number[];
   /** Where the rise reaches its limit. */
   readonly interval: readonly [number, number];
@@ -29,8 +29,10 @@ export interface Profile {
 export interface ProfileScale {
   /** Of one weighted residual. */
   readonly variance: number;
-  /** Rise at which the interval ends: the square of a t-quantile, times what autocorrelation takes from it. */
+  /** Rise at which the interval ends: the square of a t-quantile. */
   readonly limit: number;
+  /** What the rise is divided by where residuals hang together, for a change of the weighted residuals. */
+  readonly along: ((change: Float64Array) => number) | undefined;
   /** Standard error of the coordinate from linear theory, u; where there is none, a part of its range. */
   readonly step: number;
 }
@@ -49,8 +51,7 @@ export function profileOf(settled: Settled, j: number, scale: ProfileScale, watc
   const gaps = delayWalks(problem.setup, x).flatMap(({ index, gap }) =>
     index === j || !(gap > 0) ? [] : [{ index, gap }],
   );
-  const least = at.ofAll;
-  const sides = ([-1, 1] as const).map((side) => new Side(problem, x, j, side, least, scale, gaps, watch).run());
+  const sides = ([-1, 1] as const).map((side) => new Side(problem, x, j, side, at, scale, gaps, watch).run());
   const [down, up] = sides;
   return {
     at: [...down.at.toReversed(), x[j], ...up.at],
@@ -70,7 +71,7 @@ class Side {
     x: Float64Array,
     private readonly j: number,
     private readonly side: -1 | 1,
-    private readonly least: number,
+    private readonly best: Evaluation,
     private readonly scale: ProfileScale,
     private readonly gaps: readonly { readonly index: number; readonly gap: number }[],
     private readonly watch: Watch,
@@ -167,6 +168,9 @@ class Side {
   private from(start: Float64Array): { x: Float64Array; rise: number } | undefined {
     if (!this.problem.evaluate(start)) return undefined;
     const end = descend(this.problem, start, closely, this.watch, this.j);
-    return { x: end.x, rise: Math.max(0, (end.sum - this.least) / this.scale.variance) };
+    const { variance, along } = this.scale;
+    const rise = Math.max(0, end.sum - this.best.ofAll) / variance;
+    const there = along && this.problem.evaluate(end.x)?.residuals.map((r, i) => r - this.best.residuals[i]);
+    return { x: end.x, rise: along && there ? rise / along(there) : rise };
   }
 }

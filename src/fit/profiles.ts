@@ -6,19 +6,19 @@ import { closely, descend, type Watch } from "./search.js";
 import type { Settled } from "./settle.js";
 
 /**
- * Profiles of all parameters with their 95 % intervals. Autocorrelation raises the limit as it widens the linear interval, and
- * what uncertain constants bring is added to each side in quadrature.
+ * Profiles of all parameters with their 95 % intervals. Where residuals hang together the rise counts as much less as they vary
+ * more along the change of the curve, which in the linear case is what widens the linear interval. What uncertain constants bring is added to each side in quadrature.
  */
 export function profilesOf(settled: Settled, estimates: Estimates, watch: Watch): FittedProfile[] {
   const { x, problem } = settled;
-  const { t, variance, ways, carried, stretch } = estimates;
+  const { t, variance, ways, carried, along } = estimates;
+  const limit = t ** 2;
+  if (!(variance > 0) || !Number.isFinite(limit)) return [];
   return problem.setup.coordinates.flatMap((c, j): FittedProfile[] => {
-    const limit = (t * stretch[j]) ** 2;
-    if (!(variance > 0) || !Number.isFinite(limit)) return [];
     const range = Number.isFinite(c.to - c.from) ? (c.to - c.from) / 20 : Math.abs(x[j]) / 10 || 0.1;
     const { error } = ways[j];
-    const step = Number.isFinite(error) && error > 0 ? Math.min(error * stretch[j], 4 * range) : range;
-    const profile = profileOf(settled, j, { variance, limit, step }, watch);
+    const step = Number.isFinite(error) && error > 0 ? Math.min(error, 4 * range) : range;
+    const profile = profileOf(settled, j, { variance, limit, step, along }, watch);
     const value = c.toSi(x[j]);
     const end = (k: 0 | 1): number | undefined => {
       const at = c.toSi(profile.interval[k]);

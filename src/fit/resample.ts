@@ -1,10 +1,12 @@
 import type { Network } from "../model/network.js";
 import type { Trial } from "../model/trial.js";
 import { colour, whiten } from "../numerics/autoregression.js";
+import { studentTQuantile } from "../numerics/distributions.js";
 import { type Random, random } from "../numerics/random.js";
 import { collector } from "../problems/report.js";
 import { autocorrelationOf } from "./autocorrelation.js";
 import { orthonormalBasis } from "./basis.js";
+import { betweenReadings } from "./between-readings.js";
 import { linearTheory } from "./covariance.js";
 import { hangingTogether } from "./hanging-together.js";
 import type { Facts } from "./held.js";
@@ -36,7 +38,12 @@ export interface Refits {
   readonly resampling: Resampling;
   /** Points in a block; 1 where neighbours do not matter. */
   readonly block: number;
-  /** Values of refit number r (SI), or undefined where it did not converge. It depends on the seed and r alone. */
+  /** Names (their places) that a front between two readings may leave open. */
+  readonly between: readonly number[];
+  /**
+   * Values of refit number r (SI), then for each of `between` the least and the highest that it stands for; undefined where it did
+   * not converge. It depends on the seed and r alone.
+   */
   refit(r: number): readonly number[] | undefined;
 }
 
@@ -80,11 +87,13 @@ class Resampler implements Refits {
   readonly names: readonly string[];
   readonly resampling: Resampling;
   readonly block: number;
+  readonly between: readonly number[];
   private readonly phi: ReadonlyMap<number, Float64Array>;
   private readonly spread: number;
   private readonly inflate: number;
   private readonly fitted: readonly Float64Array[];
   private readonly gaps;
+  private readonly t: number;
 
   constructor(
     private readonly settled: Settled,
@@ -110,6 +119,8 @@ class Resampler implements Refits {
     this.inflate = this.spread / Math.sqrt(at.ofData / setup.observations);
     this.fitted = setup.blocks.map((b, k) => fittedCurve(b.time, b.origin, at, k));
     this.gaps = delayWalks(setup, x).filter(({ gap }) => gap > 0);
+    this.between = this.gaps.map(({ index }) => index);
+    this.t = studentTQuantile(0.975, hanging?.freedom ?? freedom);
   }
 
   refit(r: number): number[] | undefined {
@@ -141,7 +152,15 @@ class Resampler implements Refits {
         if (other.sum < best.sum) best = other;
       }
     }
-    return best.converged ? setup.coordinates.map((c, j) => c.toSi(best.x[j])) : undefined;
+    if (!best.converged) return undefined;
+    const here = this.gaps.length > 0 ? refitted.evaluate(best.x) : undefined;
+    const stretches = this.gaps.flatMap(({ index: j, gap }) => {
+      const ends = here
+        ? betweenReadings(refitted, best.x, here, { j, gap, variance: this.spread ** 2, t: this.t })
+        : [best.x[j], best.x[j]];
+      return ends.map((u) => setup.coordinates[j].toSi(u)).sort((a, b) => a - b);
+    });
+    return [...setup.coordinates.map((c, j) => c.toSi(best.x[j])), ...stretches];
   }
 
   /** The first descent, from the fit. */

@@ -38,7 +38,24 @@ export interface Fit {
   readonly held: readonly { readonly says: string; readonly deviations: number }[];
   /** Of every parameter, where they were asked for. */
   readonly profiles?: readonly FittedProfile[];
+  /** Against readings of one moment; undefined where there are none. */
+  readonly lackOfFit?: LackOfFit;
   readonly findings: readonly FitFinding[];
+}
+
+/** What readings that should be the same say of a fit. Sums are in squares of weighted residuals. */
+export interface LackOfFit {
+  /** Readings that have others beside them, and the moments that they are of. */
+  readonly readings: number;
+  readonly moments: number;
+  /** What readings of one moment differ by, the level of each log apart, and what the fit misses beyond it. */
+  readonly pure: { readonly sum: number; readonly freedom: number };
+  readonly lack: { readonly sum: number; readonly freedom: number };
+  /** Ratio of the two mean squares, and the chance of as much were the network right. */
+  readonly f: number;
+  readonly p: number;
+  /** Correlation of neighbours among what readings of one moment differ by; 0 where it is not told. */
+  readonly correlation: number;
 }
 
 /** The sum of squares along one parameter, the others at their best. */

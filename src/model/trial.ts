@@ -27,6 +27,8 @@ export interface Trial {
   readonly with: ReadonlyMap<string, Value>;
   /** Those that are made of names of the network: values once it is known which. */
   readonly late?: ReadonlyMap<string, ScalarNode>;
+  /** What else was so on the day, in words, by name; only compared. */
+  readonly conditions?: ReadonlyMap<string, string>;
   readonly injections: readonly Injection[];
   /** Tracer that the vessel holds at the start. */
   readonly contents?: Contents | undefined;

@@ -35,6 +35,9 @@ export const chiSquareQuantile = (p: number, freedom: number): number =>
 /** P(F <= f), Fisher's F with d1 and d2 degrees of freedom, above 0. */
 export const fCdf = (f: number, d1: number, d2: number): number => fTails(f, d1, d2).below;
 
+/** P(F > f), to its own digits. */
+export const fTail = (f: number, d1: number, d2: number): number => fTails(f, d1, d2).above;
+
 /** f with P(F <= f) = p. */
 export const fQuantile = (p: number, d1: number, d2: number): number =>
   positiveQuantile((f) => fTails(f, d1, d2), p, 1);

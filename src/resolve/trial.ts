@@ -104,6 +104,8 @@ export function resolveTrial(
   }
   const { settings, late } = settingsOf(child(tree, "with"), scope, report);
   const tracer = resolveTracer(child(tree, "tracer"), report);
+  const words = child(tree, "conditions");
+  const conditions = new Map(entriesOf(words).map(({ key }) => [key.text, textOf(words, key.text) ?? ""]));
   if (contents && tracer?.loss)
     report("not-yet", child(tree, "contents")?.at ?? tree.at, { what: "`contents` beside a `loss` of the tracer" });
   return {
@@ -116,6 +118,7 @@ export function resolveTrial(
     ...(flowLogs.size > 0 ? { flowLogs } : {}),
     with: settings,
     ...(late.size > 0 ? { late } : {}),
+    ...(conditions.size > 0 ? { conditions } : {}),
     injections: injections.filter((part) => part !== undefined),
     ...(contents ? { contents } : {}),
     readings: [...readings, ...steady],

@@ -10,6 +10,7 @@ import type { Problem } from "../problems/problem.js";
 import type { RegulatedFigures } from "../reaction/regulated.js";
 import type { SteadyState } from "../reaction/steady.js";
 import type { Unit } from "../units/unit.js";
+import type { Across } from "./across.js";
 import type { AimResult } from "./aim.js";
 import type { InTime } from "./in-time.js";
 import type { Nested } from "./nested.js";
@@ -26,6 +27,8 @@ export interface StudyResult {
   readonly ranking: readonly Ranked[];
   /** The log of each trial alone, no model. */
   readonly readings: readonly { readonly trial: Trial; readonly moments: MomentsResult }[];
+  /** Their curves held against one another, no model; undefined where no place was read in two trials. */
+  readonly across: Across | undefined;
   /** Every duty for the best rival, and for the others that survive. */
   readonly predictions: readonly Prediction[];
   readonly changes: readonly ChangeOutcome[];

@@ -8,6 +8,7 @@ import type { Network } from "../model/network.js";
 import type { Asked, Rival, Study } from "../model/study.js";
 import { furtherTests } from "../plan/further.js";
 import { sameCurves } from "../plan/same-curve.js";
+import { acrossOf } from "./across.js";
 import { aimAsked, sweepAsked } from "./asked.js";
 import { changeOutcomes } from "./compare.js";
 import { decisionsOf } from "./decide.js";
@@ -115,10 +116,12 @@ export function runStudy(study: Study, options: StudyOptions = {}): StudyResult 
   const best = alive[0];
   const sameCurvesOfBest = best?.plant && !cancelled() ? sameCurves(best.plant, options.library ?? []) : [];
   const further = best?.fit && !cancelled() ? furtherTests(best.rival.network, study.trials, best.fit) : [];
+  const vessel = study.rivals[0]?.network;
   return {
     study,
     ranking,
     readings,
+    across: vessel && !cancelled() ? acrossOf(vessel, study.trials, study.seed) : undefined,
     predictions,
     changes,
     decisions: decisionsOf(study, alive, changes),

@@ -1,3 +1,4 @@
+import { readFileSync } from "node:fs";
 import { describe, expect, test } from "vitest";
 import { bootstrapOf } from "../../src/fit/bootstrap.js";
 import { fit } from "../../src/fit/fit.js";
@@ -6,6 +7,7 @@ import type { Fit } from "../../src/fit/result.js";
 import type { Network } from "../../src/model/network.js";
 import type { Trial } from "../../src/model/trial.js";
 import { random } from "../../src/numerics/random.js";
+import { noises, vessels } from "../bench/coverage/cases.js";
 import { networkAt, networkOf, trialAt } from "./load.js";
 import { every, fitted, noisy, synthetic } from "./synthetic.js";
 
@@ -116,4 +118,20 @@ test("a tube's volume scatters between the samples that its front lies between",
   expect(Math.abs((renewal.standardError * 6e4) / 0.0967 - 1)).toBeLessThan(0.2);
   expect(Math.abs(riser.interval95[0] - 0.1449)).toBeLessThan(5e-4);
   expect(Math.abs(riser.interval95[1] - 0.1542)).toBeLessThan(5e-4);
+});
+
+// The reading at the far end of the gap came out low by two standard deviations: the fit has its front just there, and one refit in
+// forty has it anywhere in the gap, which tells the true volume, 150 L, no better than the gap's two ends do.
+test("a refit whose front lies between two readings stands for all of the gap", () => {
+  const vessel = vessels((path) => readFileSync(path, "utf8"))[1];
+  const trial = vessel.trial(1031, noises[0]);
+  const { fit: found } = fit(vessel.network, [trial], { starts: vessel.starts });
+  expect(found?.values.riser).toBeGreaterThan(0.1542);
+  const how = refits(vessel.network, trial, found as Fit);
+  const all = rows(how, 150);
+  const of = (between: readonly number[]) => bootstrapOf(found as Fit, 150, { ...how, between }, all).parameters[1];
+  expect(how.between).toEqual([1]);
+  expect(of(how.between).interval95[0]).toBeLessThan(0.1455);
+  expect(of([]).interval95[0]).toBeGreaterThan(of(how.between).interval95[0] + 1e-3);
+  expect(of(how.between).standardError).toBe(of([]).standardError);
 });

@@ -51,6 +51,28 @@ describe("profiles", () => {
     expect(found.findings.map((f) => f.code)).not.toContain("interval-by-profile");
   });
 
+  test("where errors hang together, are wider as the linear intervals are", () => {
+    const draw = noisy(5, 3e-4);
+    let last = draw();
+    const trial = synthetic(linear, truth, {
+      injection: "{at: feed, pulse: 50 g, start: 0 min, lasting: 1 min}",
+      at: "out",
+      times: every(0.5, 240),
+      noise: () => {
+        last = 0.8 * last + 0.6 * draw();
+        return last;
+      },
+    });
+    const found = fitted(linear, [trial], { profile: true });
+    expect(found.findings.map((f) => f.code)).toContain("residuals-correlated");
+    for (const { name, value, standardError, standardErrorCorrelated, interval95 } of found.parameters) {
+      expect((standardErrorCorrelated ?? 0) / (standardError ?? 1), name).toBeGreaterThan(1.5);
+      widths(found, name).forEach((w, k) => {
+        expect(w / Math.abs((interval95?.[k] ?? Number.NaN) - value), name).toBeCloseTo(1, 1);
+      });
+    }
+  });
+
   test("do not depend on how a parameter is counted: bounds evenly or in the logarithm", () => {
     const trial = trialWith(2, 4e-3);
     const log = networkOf(vessel(parameters(", spacing: log")));

@@ -1,6 +1,6 @@
 import type { Bootstrap } from "../../fit/bootstrap.js";
 import { patternsOf } from "../../fit/patterns.js";
-import type { Estimate, Fit, FittedParameter, FittedProfile, Nuisance } from "../../fit/result.js";
+import type { Estimate, Fit, FittedParameter, FittedProfile, LackOfFit, Nuisance } from "../../fit/result.js";
 import { differenceInUnit, type Unit } from "../../units/unit.js";
 import { finite, quantity, series, unitName } from "./quantity.js";
 
@@ -37,10 +37,16 @@ export function fitJson(fit: Fit, time: Unit, refits?: Bootstrap): Record<string
     })),
     held: fit.held,
     patterns: patternsOf(fit.readings),
+    lackOfFit: fit.lackOfFit ? lackOfFitJson(fit.lackOfFit) : null,
     ...(refits ? { bootstrap: bootstrapJson(refits) } : {}),
     ...(fit.profiles ? { profiles: Object.fromEntries(fit.profiles.map((p) => [p.name, profileJson(p)])) } : {}),
     findings: fit.findings,
   };
+}
+
+/** Sums in squares of weighted residuals: of `residualUnit`, or of standard deviations. */
+function lackOfFitJson({ readings, moments, pure, lack, f, p, correlation }: LackOfFit): object {
+  return { readings, moments, pure, lack, f: finite(f), p, correlation };
 }
 
 export function parameterJson(p: FittedParameter): object {

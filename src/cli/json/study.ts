@@ -11,7 +11,9 @@ import type {
   StudyResult,
 } from "../../study/result.js";
 import type { Spread } from "../../study/spread-shares.js";
+import { dimensions } from "../../units/dimension.js";
 import { inUnit, type Unit } from "../../units/unit.js";
+import { acrossJson } from "./across.js";
 import { fitJson } from "./fit.js";
 import { furtherJson, sameCurveJson } from "./further.js";
 import { momentsResultJson } from "./moments.js";
@@ -29,6 +31,7 @@ export function studyJson(result: StudyResult): Record<string, unknown> {
     ...(result.stopped ? { stopped: result.stopped } : {}),
     ranking: result.ranking.map(rankedJson),
     readings: result.readings.map(({ trial, moments }) => ({ trial: trial.title, ...momentsResultJson(moments) })),
+    ...acrossOfStudy(result),
     predictions: result.predictions.map(predictionJson),
     changes: result.changes.flatMap(changeJson),
     decisions: result.decisions.map((d) => decisionJson(result, d)),
@@ -50,9 +53,15 @@ export function studyJson(result: StudyResult): Record<string, unknown> {
     further: result.further.map(furtherJson),
     findings: [
       ...result.readings.flatMap(({ trial, moments }) => moments.findings.map((f) => ({ trial: trial.title, ...f }))),
+      ...(result.across?.findings ?? []),
       ...result.ranking.flatMap(({ rival, fit }) => (fit?.findings ?? []).map((f) => ({ network: rival.path, ...f }))),
     ],
   };
+}
+
+function acrossOfStudy({ across, study }: StudyResult): object {
+  const units = study.rivals[0]?.network.units;
+  return across && units ? { across: acrossJson(across, units.unitFor(dimensions.volume)) } : {};
 }
 
 function rankedJson({ rival, fit, standing, survives, problems }: Ranked): object {

@@ -22,6 +22,7 @@ export function fitText(title: string, fit: Fit, refits?: Bootstrap): string {
     [
       `  residual sum of squares ${formatNumber(fit.residualSumOfSquares, 6)}${unit} over ${observations} points, ${freeParameters} unknowns`,
       `  AICc ${formatNumber(fit.aicc, 6)}, BIC ${formatNumber(fit.bic, 6)}, ${evaluations} evaluations`,
+      `  ${lackOfFitText(fit)}`,
     ].join("\n"),
     analysesTable(fit),
     heldTable(fit),
@@ -55,6 +56,14 @@ function parametersTable(fit: Fit): string {
       ];
     }),
   );
+}
+
+/** What repeated readings say of the fit, in a line. */
+export function lackOfFitText({ lackOfFit: lack }: Fit): string {
+  if (!lack) return "lack of fit: not told, as no two readings are of one moment (repeat samples, or the test)";
+  const { f, p, pure, lack: rest, readings, moments } = lack;
+  const chance = p < 0.001 ? "below 0.001" : formatNumber(p, 2);
+  return `lack of fit: ${p < 0.01 ? "shown" : "not shown"} by ${readings} readings of ${moments} moments, F ${formatNumber(f, 3)} on ${rest.freedom} and ${pure.freedom} degrees of freedom, chance ${chance}`;
 }
 
 /** Analyses of the settled vessel; curves are for pictures. */

@@ -25,6 +25,7 @@ export function studyText(result: StudyResult, answer: readonly AnswerLine[], re
     `${result.study.title}${marked}`,
     answerText(answer),
     rankingTable(result),
+    (result.across?.findings ?? []).map((f) => wrap(`  trials together, ${f.at}: `, f.message)).join("\n"),
     predictionsTable(result),
     studyStatesWords(result)
       .map((says) => wrap("  ", says))

@@ -185,6 +185,13 @@ export const runEntries = {
         : `fit the trials one by one: where their values differ, vessel, kinetics or conditions are not the same in '${d.trial}'; or its errors are declared too small. Predict nothing across the two until that is settled`,
     example: { trial: "Plant analyses", key: "Plant analyses/A at product", off: 10, alone: false },
   }),
+  "lack-of-fit": entry({
+    severity: "warning",
+    says: (d: { times: number; readings: number; p: number }) =>
+      `the network misses its readings by ${d.times.toFixed(d.times < 10 ? 1 : 0)} times what repeated readings of one moment differ by (${d.readings} of them; chance ${d.p < 0.001 ? "below 0.001" : d.p.toFixed(3)}): it is not right, or these readings share an error that repeats do not show`,
+    fix: "look at the residuals for what it lacks and try a network that has it; intervals hold only as far as the network does",
+    example: { times: 3.2, readings: 24, p: 0.0004 },
+  }),
   "spreads-differ": entry({
     severity: "warning",
     says: (d: { wide: string; narrow: string; times: number }) =>

@@ -1,5 +1,6 @@
 import type { Figure } from "../../data/figure.js";
 import type { ReadingMoments } from "../../data/moments.js";
+import type { Fit } from "../../fit/result.js";
 import type { StudyResult } from "../../study/result.js";
 import { inUnit } from "../../units/unit.js";
 import { chance } from "../digits.js";
@@ -73,8 +74,25 @@ export function findingsOf(result: StudyResult): { findings: ReportFinding[]; no
   const notSupported = result.readings.flatMap(({ trial, moments }) =>
     moments.notSupported.map((words) => (several ? `${trial.title}: ${words}` : words)),
   );
-  return { findings: [...fromTraits, ...fromFit, ...fromData], notSupported };
+  const together = (result.across?.findings ?? []).map(
+    ({ at, message, evidence, couldBe, next }): ReportFinding => ({
+      message: `trials together, ${at}: ${message}`,
+      evidence,
+      couldBe,
+      next,
+    }),
+  );
+  return {
+    findings: [...fromTraits, ...together, ...fromFit, ...fromData],
+    notSupported: [...notSupported, ...(result.across?.notSupported ?? []), ...unrepeated(best?.fit)],
+  };
 }
+
+/** Without repeats nothing but the network itself says how far readings may be off. */
+const unrepeated = (fit: Fit | undefined): string[] =>
+  !fit || fit.lackOfFit
+    ? []
+    : ["lack of fit: no two readings are of one moment; samples or a test that are repeated would tell what is error"];
 
 /** What the tests show, once for all tests that show it: the evidence says where. */
 function fromTests({ readings }: StudyResult): ReportFinding[] {

@@ -210,6 +210,11 @@ export const trialShape = record({
     says: "Constants of the network that the day set otherwise, the speed of a stirrer say: numbers, or expressions over names of the network (`half: total / 2`), which have there what the network or the fit gives them.",
     example: "{speed: 90 1/min}",
   },
+  conditions: {
+    shape: named(text, "names"),
+    says: "What else was so on the day, by name and in words that are the same where it was the same: season, wind, who dosed. No curve is worked out from them. Trials of one vessel are held against one another (`fit`, `study`): those that differ in nothing are repeats, those that differ in these alone show whether they matter.",
+    example: "{season: winter, wind: calm}",
+  },
   feeds: {
     says: "With a `chemistry`: what each feed brought, by species. A species that is not named is not there; `{}` is clean liquid. A `±` makes a concentration an unknown of the fit, held by that.",
     example: "{feed: {A: 1 mol/L ± 1 %, B: 1.2 mol/L}}",

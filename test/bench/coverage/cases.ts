@@ -106,7 +106,7 @@ export function p1(text: (path: string) => string): Vessel {
     methods: ["profile", "bootstrap"],
     starts: 8,
     refits: 100,
-    errors: [0, 1],
+    errors: [0, 1, 2],
     trial(seed, noise) {
       const error = errors(seed, 6.295e-4, noise);
       const rows = Array.from(time, (t, i) => `${t / 60},${exact[i] + 0.002 + (2e-6 * t) / 60 + error()}\n`);

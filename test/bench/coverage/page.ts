@@ -50,8 +50,8 @@ Tests on vessels of known truth, run again and again with errors of their own: i
 reading to the next (AR(1), with the correlation of neighbours). Of 100 sets, in how many the interval holds the truth; of 500 sets a
 method that is right stays within 93.1 and 96.9 nineteen times of twenty. Bootstrap: percentiles of ${vessels.map((v) => v.refits).join(" and ")} refits of each set. Made by
 \`npm run bench -- coverage\` (seeded; test/bench/coverage). Linear intervals of a tube whose front lies between two samples are no
-intervals, as \`fit\` says itself, and are not counted. Bold: outside 92 to 98. Where a front lies between samples, quote the profile:
-percentiles of refits are a little too narrow there, and profiles of errors that hang together on the careful side.
+intervals, as \`fit\` says itself, and are not counted. Bold: outside 92 to 98. A refit whose front lies
+between two readings counts with the end of that gap.
 
 | vessel | parameter | errors | sets | linear | profile | bootstrap |
 |---|---|---|--:|--:|--:|--:|
