@@ -6,6 +6,7 @@ import { caption, drawCaption } from "./caption.js";
 import type { CurveLine, Curves, CurvesOptions } from "./curves.js";
 import { type EndLabel, endLabels, endRoom } from "./line-labels.js";
 import { namesWithin } from "./names-within.js";
+import { narrow } from "./picture.js";
 import { axisData, type PlotData } from "./plotted.js";
 import { area, largest, points, trace } from "./traces.js";
 
@@ -42,7 +43,7 @@ export function panel(
     ...(curves.upright ? [curves.upright.at] : []),
   ];
   const xRange = [plot.x, plot.x + plot.width] as const;
-  const ax = curves.xLog ? logSpan(times, xRange) : linearAxis(times, xRange, 7, false);
+  const ax = curves.xLog ? logSpan(times, xRange) : linearAxis(times, xRange, width <= narrow ? 5 : 7, false);
   const floor = options.log ? ay.domain[0] * (1 - 1e-12) : Number.NEGATIVE_INFINITY;
   const measured = curves.points ? points(curves.points.x, curves.points.y, ax, ay, "point", floor).svg : "";
   // the foremost line is drawn last

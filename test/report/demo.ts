@@ -87,7 +87,7 @@ export const demo: StudyReport = {
       trial: "Salt pulse, normal flow",
       at: "product",
       grade: "B",
-      because: ["recovery 96 % (92 to 100 %)", "6 % of the area is extrapolated tail"],
+      clean: false,
       figures: [
         { name: "recovery", estimate: { value: 96.2, unit: "%", low: 92.3, high: 100.1 } },
         { name: "mean", estimate: { value: 95.4, unit: "min", low: 91, high: 99.8 } },
@@ -110,7 +110,17 @@ export const demo: StudyReport = {
       next: "repeat with a diluted slug; sample a second depth",
     },
   ],
-  notSupported: ["dead volume: the mean is within 5 % of volume over flow, and the flow is known to 2 %"],
+  dataRemarks: [
+    {
+      message: "a large part of the figures comes from the extrapolated tail",
+      evidence: "extrapolated: 6 % of the area, 11 % of the mean",
+      couldBe: "a test stopped too early",
+      next: "measure longer",
+    },
+  ],
+  notSupported: [
+    { what: "dead volume", says: ["the mean is within 5 % of volume over flow, and the flow is known to 2 %"] },
+  ],
   rivals: [
     { network: "bypass and corner", freeParameters: 4, aicc: -812.4, weight: 0.93, verdict: "leads" },
     { network: "bypass", freeParameters: 2, aicc: -807.2, weight: 0.07, verdict: "misses the tail after 200 min" },

@@ -1,7 +1,7 @@
 import { explainsNothing } from "../../fit/explains-nothing.js";
 import type { Ranked, StudyResult } from "../../study/result.js";
 import type { Rival } from "../input.js";
-import { shortName } from "./figures.js";
+import { letterOf } from "./figures.js";
 import { sameCurveWords } from "./further-words.js";
 
 /** The networks that were tried, best first. */
@@ -20,7 +20,7 @@ function rivalRow(r: Ranked, place: number, result: StudyResult): Rival {
           : `leaves ${ratioWords(r, lead)} as much unexplained as the best`;
   return {
     network: r.rival.network.title,
-    ...(result.ranking.length > 1 ? { short: shortName(r) } : {}),
+    ...(result.ranking.length > 1 ? { letter: letterOf(place), file: r.rival.path.replace(/^.*[\\/]/u, "") } : {}),
     freeParameters: r.fit?.freeParameters ?? 0,
     aicc: r.fit ? r.standing.criterion : Number.NaN,
     weight: r.standing.weight,
