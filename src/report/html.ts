@@ -1,3 +1,4 @@
+import { columnWidth } from "../draw/picture.js";
 import { escapeText, type Svg } from "../svg/svg.js";
 import { drawingDefinitions, drawingStyle } from "../svg/theme.js";
 import type { Figure } from "./input.js";
@@ -15,6 +16,9 @@ export interface Column {
 /** A cell: words, or words with a second, quieter line; numbers are not parted from their units. */
 export type Cell = string | { readonly words: string; readonly under: string } | { readonly code: string };
 
+/** Tables of no more rows than this are not broken between two sheets. */
+const short = 8;
+
 /** A table with its caption; the first cell of a row is its heading. Nothing where there are no rows. */
 export function table(caption: string, columns: readonly Column[], rows: readonly (readonly Cell[])[]): Html {
   if (rows.length === 0) return "";
@@ -28,7 +32,7 @@ export function table(caption: string, columns: readonly Column[], rows: readonl
       return `<tr>${cells.join("")}</tr>`;
     })
     .join("");
-  return `<div class="scroll"><table><caption>${escapeText(caption)}</caption><thead><tr>${head}</tr></thead><tbody>${body}</tbody></table></div>`;
+  return `<div class="scroll${rows.length <= short ? " short" : ""}"><table><caption>${escapeText(caption)}</caption><thead><tr>${head}</tr></thead><tbody>${body}</tbody></table></div>`;
 }
 
 /** A section under a heading; left out where it has nothing to say. */
@@ -68,10 +72,14 @@ export const figures = (list: readonly Figure[]): Html =>
   list.length === 0 ? "" : `<div class="figures">${list.map(figure).join("")}</div>`;
 
 /** A drawing with its caption and, for the page's script, the numbers behind it. */
-export function figure({ name, drawing, caption, data, wide }: Figure): Html {
+export function figure({ name, drawing, caption, data }: Figure): Html {
   const numbers = data ? `<script type="application/json">${embeddedJson(embedded(name, data))}</script>` : "";
-  return `<figure id="figure-${escapeText(name)}"${wide ? ' class="wide"' : ""} data-name="${escapeText(name)}"><div class="drawing">${onPage(drawing)}</div><figcaption>${prose(caption)}</figcaption>${numbers}</figure>`;
+  return `<figure id="figure-${escapeText(name)}"${isWide(drawing) ? ' class="wide"' : ""} data-name="${escapeText(name)}"><div class="drawing">${onPage(drawing)}</div><figcaption>${prose(caption)}</figcaption>${numbers}</figure>`;
 }
+
+/** Drawings that are wider than a column take the whole page. */
+const isWide = (drawing: Svg): boolean =>
+  Number(/^<svg [^>]*? width="([\d.]+)"/.exec(drawing)?.[1] ?? 0) > columnWidth + 40;
 
 /** A drawing without the style and definitions that all drawings of a page share (`sharedDrawing`). */
 const onPage = (drawing: Svg): Svg => drawing.replace(/<style>[^<]*<\/style>(<defs>.*?<\/defs>)?/, "");

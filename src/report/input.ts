@@ -77,8 +77,6 @@ export interface Figure {
   readonly name: string;
   readonly drawing: Svg;
   readonly caption: string;
-  /** It takes the whole width of the page. */
-  readonly wide?: boolean;
   /** The numbers behind it. */
   readonly data?: FigureData;
 }

@@ -1,6 +1,7 @@
 import { plotCurves } from "../../src/draw/curves.js";
 import { plotFit } from "../../src/draw/fit-curve.js";
 import { drawNetwork } from "../../src/draw/network.js";
+import { columnWidth } from "../../src/draw/picture.js";
 import { plotRegions } from "../../src/draw/regions.js";
 import { plotResiduals } from "../../src/draw/residuals.js";
 import { sheetTable } from "../../src/draw/sheet-table.js";
@@ -12,6 +13,9 @@ const time = Array.from({ length: 90 }, (_, k) => k * 4);
 const curve = (tau: number): number[] => time.map((t) => (t < 15 ? 0 : 0.05 * Math.exp(-(t - 15) / tau)));
 const wiggle = time.map((_, k) => 0.0012 * Math.sin(k * k));
 const fitted = curve(76);
+
+/** As the study draws what stands beside another. */
+const column = { untitled: true, width: columnWidth };
 
 export const demo: StudyReport = {
   title: "Why does V-3 convert less than designed?",
@@ -58,7 +62,7 @@ export const demo: StudyReport = {
             },
           ],
         },
-        { untitled: true },
+        column,
       ),
       caption: "Measured points, the fitted line, and what is left between them.",
     },
@@ -77,7 +81,7 @@ export const demo: StudyReport = {
             },
           ],
         },
-        { untitled: true },
+        column,
       ),
       caption: "Weighted residuals and their autocorrelation.",
     },
@@ -141,7 +145,7 @@ export const demo: StudyReport = {
           ],
           points: { x: time, y: fitted.map((v, k) => v + wiggle[k]), label: "measured" },
         },
-        { untitled: true, log: true },
+        { ...column, log: true },
       ),
       caption: "Rivals over the same points, the best in full tone.",
     },
@@ -174,7 +178,7 @@ export const demo: StudyReport = {
               },
             ],
           },
-          { untitled: true },
+          column,
         ),
         caption: "Inside the ellipse lies 95 % of what is possible.",
       },
@@ -185,7 +189,7 @@ export const demo: StudyReport = {
       name: "exit-age",
       ...plotCurves(
         { title: "Exit ages", x: "time, min", y: "E, 1/min", lines: [{ label: "E", x: time, y: fitted }] },
-        { untitled: true },
+        column,
       ),
       caption: "Ages of what leaves.",
     },
@@ -255,7 +259,7 @@ export const demo: StudyReport = {
             },
           ],
         },
-        { untitled: true },
+        column,
       ),
       caption: "Normal production over feed.flow; the band holds 95 % of what is possible.",
     },

@@ -84,10 +84,11 @@ html{scroll-behavior:smooth}
 }
 @page{margin:14mm}
 @media print{
-body{max-width:none;padding:0;font-size:9.5pt;line-height:1.38}
+:root{font-size:9.5pt}
+body{max-width:none;padding:0;font-size:1rem;line-height:1.38}
 nav,.tools,.told,.skip{display:none}
 h1{font-size:16pt}
-h2{margin:1.1rem 0 .4rem;padding-top:.4rem;break-after:avoid}
+h2{font-size:12.5pt;margin:1.3rem 0 .4rem;padding-top:.4rem;break-after:avoid}
 h3,caption,.graded{break-after:avoid}
 p,li{orphans:2;widows:2}
 p,li,dd,figcaption{max-width:none}
@@ -96,7 +97,7 @@ figcaption{font-size:8.5pt;line-height:1.3}
 figure{display:inline-block;vertical-align:top;width:calc(50% - 2.5mm);margin:0 0 .7rem}
 figure:nth-child(odd){margin-right:5mm}
 figure.wide{width:100%;margin-right:0}
-figure,tr,.finding,.answer,li,.together{break-inside:avoid}
+figure,tr,.finding,.answer,li,.together,.beside,.short{break-inside:avoid}
 .finding{margin:.6rem 0}
 .drawing{overflow:visible!important}
 figure svg{max-height:235mm}

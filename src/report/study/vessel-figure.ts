@@ -31,7 +31,6 @@ export function vesselFigure(ranked: Ranked, trials: readonly Trial[]): Figure |
   return {
     name: "vessel",
     drawing: drawNetwork(aggregated(sheet, outermost(plant.network)), { untitled: true }),
-    wide: true,
     data: { table: sheetTable(sheet) },
     caption: `The vessel as fitted by '${rival.network.title}', at the flow of the file. Area is ${hold}, width is flow; underlined is what the fit moved, with what it leaves possible (95 %).`,
   };
