@@ -3,7 +3,7 @@ import { type Box, px, type Svg } from "../svg/svg.js";
 import { formatNumber } from "../units/format.js";
 import { type Axis, bottomAxis, leftAxis, leftRoom, linearAxis, logAxis, logSpan } from "./axes.js";
 import { caption, drawCaption } from "./caption.js";
-import type { CurveLine, Curves, CurvesOptions } from "./curves.js";
+import type { CurveLine, Curves, CurvesOptions } from "./curves-input.js";
 import { type EndLabel, endLabels, endRoom } from "./line-labels.js";
 import { namesWithin } from "./names-within.js";
 import { narrow } from "./picture.js";
