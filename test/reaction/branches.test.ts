@@ -187,9 +187,13 @@ reactions:
       plantAt: (Q) => compile(plant.network, { Q }).plant,
       settingsAt: () => ({}),
     });
-    const washed = found.turns.filter((t) => t.what === "gives way");
-    expect(washed.map((t) => t.as)).toEqual(["falls"]);
+    expect(found.left).toEqual([]);
+    expect(found.turns.map((t) => [t.what, t.as, t.of])).toEqual([
+      ["washes out", "rises", "X"],
+      ["gives way", "falls", undefined],
+    ]);
     // mu S / (ks + S) - kd at S = 10 g/L, by 1 L.
-    expect(washed[0].at * 3600e3).toBeCloseTo((0.5 * 10) / 10.1 - 0.02, 3);
+    for (const { at } of found.turns) expect(at * 3600e3).toBeCloseTo((0.5 * 10) / 10.1 - 0.02, 7);
+    expect(found.turns[0].state.left[1]).toBe(0);
   });
 });
