@@ -81,7 +81,7 @@ function turned(
     sum += a + b;
     t = to;
     here = next;
-    if (Math.abs(a) + Math.abs(b) < widest) step = Math.min(1.7 * (step < most(t) ? step : most(t)), most(t));
+    if (Math.abs(a) + Math.abs(b) < widest) step = Math.min(1.7 * Math.min(step, most(t)), most(t));
   }
   return sum;
 }
