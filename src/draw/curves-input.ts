@@ -29,8 +29,8 @@ export interface CurveLine {
   readonly label: string;
   readonly x: ArrayLike<number>;
   readonly y: ArrayLike<number>;
-  /** Parts of a distribution that all come at one time: plug flow. `area` is the share of the whole. */
-  readonly spikes?: readonly { readonly x: number; readonly area: number }[];
+  /** Parts of a distribution that all come at one time: plug flow. `area` is the share of the whole; else `words` tell it. */
+  readonly spikes?: readonly { readonly x: number; readonly area: number; readonly words?: string }[];
   /** 95 % of what is possible lies here. */
   readonly band?: { readonly low: ArrayLike<number>; readonly high: ArrayLike<number> };
   readonly accent?: boolean;

@@ -41,7 +41,9 @@ const panelRoom = 66;
 
 function inWords(curves: Curves): string {
   const lines = curves.lines.map((l) => {
-    const at = (l.spikes ?? []).map((s) => `${formatNumber(s.area * 100, 3)} % at ${formatNumber(s.x, 4)}`);
+    const at = (l.spikes ?? []).map(
+      (s) => `${s.words ?? `${formatNumber(s.area * 100, 3)} %`} at ${formatNumber(s.x, 4)}`,
+    );
     return at.length > 0 ? `${l.label} (with ${at.join(", ")} at once)` : l.label;
   });
   return `${curves.y} against ${curves.x}. Lines: ${lines.join("; ")}.${curves.points ? ` ${curves.points.named ? "Marked" : "Measured points"}: ${curves.points.label ?? curves.points.x.length}.` : ""}`;

@@ -122,7 +122,7 @@ function spikes(l: CurveLine, named: boolean, ax: Axis, plot: Box): Svg {
     .map((s) => {
       const x = ax.at(s.x);
       const tip = plot.y + 18;
-      const words = `${named ? `${l.label}: ` : ""}${formatNumber(s.area * 100, 3)}\u2009% at ${formatNumber(s.x, 4)}`;
+      const words = `${named ? `${l.label}: ` : ""}${s.words ?? `${formatNumber(s.area * 100, 3)}\u2009%`} at ${formatNumber(s.x, 4)}`;
       const right = x > plot.x + plot.width * 0.7;
       return (
         line(x, base, x, tip + 6, "spike") +
