@@ -225,6 +225,8 @@ export interface CautionTriggers {
   readonly recirculates?: boolean;
   /** A reaction is fast against mixing. */
   readonly fastReaction?: boolean;
+  /** No test stands behind any of it. */
+  readonly untested?: boolean;
   /** Duties beyond what was tested: "feed 15 L/min, tested up to 10 L/min". */
   readonly extrapolated?: readonly string[];
 }
