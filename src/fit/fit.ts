@@ -95,8 +95,22 @@ export function fitWith(
     return { fit: undefined, problems };
   }
   if (nothingButNoise(setup, settled, report)) return { fit: undefined, problems };
-  return { fit: resultOf(setup, settled, found, options.profile === true, watch), problems };
+  const wanted = options.profile === true;
+  let [end, result] = [settled, resultOf(setup, settled, found, wanted, watch)];
+  // A look about the optimum may fall upon a better one.
+  for (let round = 0; round < mostBetter && result.better && !watch.cancelled(); round++) {
+    const lower = descend(end.problem, result.better, fully, watch);
+    const again = lower.sum < end.at.ofAll && settle(setup, end.weights, end.problem, lower, watch);
+    if (!again) break;
+    end = again;
+    const better = { ...found, best: lower, optima: [lower, ...found.optima], close: undefined };
+    result = resultOf(setup, again, better, wanted, watch);
+  }
+  return { fit: result.fit, problems };
 }
+
+/** So often a better optimum is followed. */
+const mostBetter = 3;
 
 /** A fit to nothing but constants would be numbers made of nothing. One reading that moves is enough. */
 function anySignal({ blocks }: Setup, report: Report): boolean {
@@ -152,7 +166,13 @@ function alone(problem: LinearProblem, x: Float64Array): SearchResult {
   return { best, optima: best ? [best] : [], cancelled: false };
 }
 
-function resultOf(setup: Setup, settled: Settled, found: SearchResult, profile: boolean, watch: Watch): Fit {
+function resultOf(
+  setup: Setup,
+  settled: Settled,
+  found: SearchResult,
+  profile: boolean,
+  watch: Watch,
+): { fit: Fit; better: Float64Array | undefined } {
   const { x, at, weights, problem } = settled;
   const rises = found.close?.standsFor === problem ? found.close.problem : problem;
   const estimates = estimatesOf(settled, rises);
@@ -169,7 +189,7 @@ function resultOf(setup: Setup, settled: Settled, found: SearchResult, profile: 
   const told = converged && !watch.cancelled();
   const profiles = profile && told ? profilesOf(settled, estimates, watch) : undefined;
   const notHolding = told && !profiles ? notLinear(rises, x, estimates, watch) : [];
-  return {
+  const fit: Fit = {
     parameters: found.cancelled ? estimates.parameters.map(unsure) : estimates.parameters,
     values: valuesAt(setup, x),
     nuisance: estimates.nuisance,
@@ -206,6 +226,7 @@ function resultOf(setup: Setup, settled: Settled, found: SearchResult, profile: 
       notLinear: notHolding,
     }),
   };
+  return { fit, better: notHolding.find((p) => p.better)?.better };
 }
 
 /** Where a fit was cut short there is a best so far, and no telling how good it is. */
