@@ -24,6 +24,8 @@ interface Checked {
   readonly kind: string | undefined;
   readonly problems: readonly Problem[];
   readonly plant: Plant | undefined;
+  /** What was understood of a document of another sort, for people. */
+  readonly says?: () => string;
 }
 
 /** `check FILE…`: every problem of every file; of a sound network its balance. */
@@ -66,8 +68,10 @@ async function parsed(text: string, options: ParseOptions): Promise<Omit<Checked
   const alone = sound ? parseNetwork(text, options) : undefined;
   if (alone?.document) return { kind: "network", problems: alone.problems, plant: alone.document.start };
   const { parseAny } = await import("../parse/any.js");
-  const { kind, network, problems } = parseAny(text, options);
-  return { kind, problems, plant: network?.start };
+  const any = parseAny(text, options);
+  const { kind, network, problems } = any;
+  const { understoodText } = await import("./text/understood.js");
+  return { kind, problems, plant: network?.start, says: () => understoodText(any) };
 }
 
 function textOf(
@@ -81,7 +85,7 @@ function textOf(
   return checked.map((c) => say(c, colour)).join("\n\n");
 }
 
-function say({ file, kind, problems, plant }: Checked, colour: boolean): string {
+function say({ file, kind, problems, plant, says }: Checked, colour: boolean): string {
   const errors = problems.filter((p) => p.severity === "error").length;
   const warnings = problems.length - errors;
   const counts = [
@@ -89,7 +93,11 @@ function say({ file, kind, problems, plant }: Checked, colour: boolean): string 
     ...(warnings > 0 ? [counted(warnings, "warning")] : []),
   ];
   const head = `${file}: ${kind ? `${kind}, ` : ""}${counts.join(", ")}`;
-  return blocks(head, problems.length > 0 ? printProblems(problems, { colour }) : "", plant && networkText(plant));
+  return blocks(
+    head,
+    problems.length > 0 ? printProblems(problems, { colour }) : "",
+    plant ? networkText(plant) : says?.(),
+  );
 }
 
 const counted = (n: number, word: string): string => `${n} ${word}${n === 1 ? "" : "s"}`;

@@ -124,7 +124,10 @@ function addSimulate(root: Command, { perform, inputs, io }: Stage): void {
         .default("auto"),
     )
     .option("--verify", "run a second engine and print the largest difference")
-    .option("-o, --output <file>", "write the curves, or what leaves every cell at a duty, to F.csv")
+    .option(
+      "-o, --output <file>",
+      "write the curves to F.csv, F.svg or F.png; at a steady duty what leaves every cell, to F.csv",
+    )
     .option("--ages <file>", "with --pulse and --step: write mean age and life expectancy at every cell to F.csv")
     .option(
       "--along <file>",

@@ -14,7 +14,6 @@ import { followTrial } from "../simulate/trial.js";
 import { formatNumber, formatQuantity } from "../units/format.js";
 import { inUnit, type Unit } from "../units/unit.js";
 import type { Context } from "./context.js";
-import { curvesCsv } from "./csv.js";
 import { engineBeside, engineNamed, largestDifference } from "./engines.js";
 import { pure, quantity, series } from "./json/quantity.js";
 import { balanceJson, momentsJson } from "./json/tracer.js";
@@ -27,11 +26,16 @@ import { curvesOn } from "./text/plot.js";
 import { blocks, table } from "./text/table.js";
 import { balanceLine, momentsTable } from "./text/tracer.js";
 import { type Clock, clockFrom } from "./times.js";
+import { tracerFile } from "./tracer-file.js";
 import { trialBalance } from "./trial-balance.js";
 import { type TrialSpike, trialSpikes } from "./trial-spikes.js";
 
 /** `simulate --trial`: what every probe of a trial would read. Times count from the first injection. */
-export function simulateTrial(network: Network, options: SimulateOptions, { inputs, io }: Context): Outcome {
+export async function simulateTrial(
+  network: Network,
+  options: SimulateOptions,
+  { inputs, io }: Context,
+): Promise<Outcome> {
   if (options.follows) throw new UsageError("--follows is for --pulse and --step; a trial says itself what it follows");
   if (options.at) throw new UsageError("--at is for --pulse and --step; a trial says itself where it reads");
   const trial = plannedIn(inputs.document(options.trial ?? "", parseTrial), network.basis);
@@ -68,9 +72,16 @@ export function simulateTrial(network: Network, options: SimulateOptions, { inpu
       }));
       return { at: r.at, time: clock.shown, value, spikes: marks };
     });
+    const spike = `${unit} ${clock.unit.name}`;
     io.write(
       options.output,
-      curvesCsv(rows, { time: clock.unit.name, value: unit, spike: `${unit} ${clock.unit.name}` }),
+      await tracerFile(options.output, {
+        title: `${network.title}: ${trial.title}`,
+        y: `tracer, ${unit}`,
+        units: { time: clock.unit.name, value: unit, spike },
+        curves: rows,
+        spikeWords: (area) => `${formatNumber(area, 3)}\u2009${spike}`,
+      }),
     );
   }
   const why = stopped ?? other?.stopped;

@@ -5,7 +5,6 @@ import { formatNumber, formatQuantity } from "../units/format.js";
 import { inUnit } from "../units/unit.js";
 import { agesCsv } from "./ages.js";
 import type { Context } from "./context.js";
-import { curvesCsv } from "./csv.js";
 import { engineBeside, engineNamed, largestDifference } from "./engines.js";
 import { pure } from "./json/quantity.js";
 import { tracerJson } from "./json/tracer.js";
@@ -18,10 +17,11 @@ import { curvesOn } from "./text/plot.js";
 import { blocks } from "./text/table.js";
 import { balanceLine, momentsTable, spikesText } from "./text/tracer.js";
 import { clockFrom } from "./times.js";
+import { tracerFile } from "./tracer-file.js";
 import { balanceUnit, perUnit, pureNumber } from "./units.js";
 
 /** `simulate --pulse` and `--step`: a unit of tracer. */
-export function simulateUnit(network: Network, options: SimulateOptions, { io }: Context): Outcome {
+export async function simulateUnit(network: Network, options: SimulateOptions, { io }: Context): Promise<Outcome> {
   const form = options.pulse === undefined ? "step" : "pulse";
   const into = options.pulse ?? options.step ?? "";
   if (options.follows !== undefined && !followedIn(network).includes(options.follows)) {
@@ -66,7 +66,13 @@ export function simulateUnit(network: Network, options: SimulateOptions, { io }:
     }));
     io.write(
       options.output,
-      curvesCsv(curves, { time: clock.unit.name, value: valueUnit.name || "1", spike: areaUnit.name || "1" }),
+      await tracerFile(options.output, {
+        title: `${network.title}: a unit ${form} into ${into}`,
+        y: wordsOfValue(form, closed, clock.unit.name),
+        units: { time: clock.unit.name, value: valueUnit.name || "1", spike: areaUnit.name || "1" },
+        curves,
+        ...(closed ? { spikeWords: (area) => `${formatNumber(area, 3)}\u2009${areaUnit.name}` } : {}),
+      }),
     );
   }
   if (options.ages !== undefined) io.write(options.ages, agesCsv(plant, clock.unit));
@@ -110,6 +116,14 @@ export function simulateUnit(network: Network, options: SimulateOptions, { io }:
     },
     notes,
   };
+}
+
+/** What the curves count, as an axis says it. */
+function wordsOfValue(form: "pulse" | "step", closed: boolean, time: string): string {
+  if (closed) return "concentration over that when all is mixed (c·V / amount)";
+  return form === "pulse"
+    ? `E, exit age (c·Q / amount), 1/${time}`
+    : "F, share of what leaves that came in since (c / c in)";
 }
 
 /** Why a closed vessel has no table of moments. */

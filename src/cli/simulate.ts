@@ -12,7 +12,7 @@ export async function simulate(file: string, options: SimulateOptions, context: 
   if (options.states !== undefined && (asked[0] !== "duty" || options.transient || options.along !== undefined)) {
     throw new UsageError("--states goes with --duty FILE, without --transient and --along: it follows steady states");
   }
-  if (options.transient && options.output !== undefined) {
+  if ((options.transient || asked[0] !== "duty") && options.output !== undefined) {
     if (!/\.(csv|svg|png)$/i.test(options.output))
       throw new UsageError(`-o writes CSV, SVG or PNG here: name a file with that ending, not '${options.output}'`);
   } else if (options.output !== undefined && options.states === undefined && !/\.csv$/i.test(options.output)) {

@@ -82,15 +82,16 @@ const commandLine = (file: string, { output, starts }: StudyOptions): string =>
 
 function notesOf(
   status: ExitStatus,
-  { ranking }: StudyResult,
+  result: StudyResult,
   folder: string | undefined,
   path: string | undefined,
 ): string[] {
   if (status === 130) return ["backmix: interrupted; what was finished is printed, no report is written"];
+  const { ranking } = result;
   const noFolder = folder === undefined ? ["backmix: no report is written; name a folder with -o or `out:`"] : [];
   if (status !== 3) return noFolder;
   const where = path === undefined ? "" : "; the report says which";
-  const notFitted = ranking.filter((r) => !r.fit);
+  const notFitted = ranking.filter((r) => !r.fit && (result.study.trials.length > 0 || !r.plant));
   const ended = ranking.some((r) => r.fit && !r.fit.converged);
   return [
     ...noFolder,

@@ -42,6 +42,12 @@ export function plotBars(of: Bars, options: PictureOptions & { readonly width?: 
   const says = `${of.quantity}: ${of.rows.map((r) => `${r.label} ${Math.round(r.percent)} %`).join(", ")}.`;
   return {
     drawing: picture(of.title, says, view, options.theme ?? "auto", parts),
-    data: { table: { head: ["", of.quantity], rows: of.rows.map((r) => [r.label, r.percent]) } },
+    data: {
+      table: {
+        head: ["", of.quantity],
+        rows: of.rows.map((r) => [r.label, r.percent]),
+        boxes: of.rows.map((_, k) => ({ x: 0, y: top + k * rowHeight, width, height: rowHeight })),
+      },
+    },
   };
 }

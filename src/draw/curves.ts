@@ -1,57 +1,12 @@
 import type { Svg } from "../svg/svg.js";
 import { formatNumber } from "../units/format.js";
 import { caption, drawCaption } from "./caption.js";
+import type { Curves, CurvesOptions } from "./curves-input.js";
 import { panel } from "./panel.js";
-import { type PictureOptions, picture } from "./picture.js";
+import { picture } from "./picture.js";
 import type { PlotData, Plotted } from "./plotted.js";
 
-/** Lines over one pair of axes, such as E or F of several outlets, or rivals over the same points. */
-export interface Curves {
-  readonly title: string;
-  /** Quantity and unit: "time, min", "E, 1/min". */
-  readonly x: string;
-  readonly y: string;
-  readonly lines: readonly CurveLine[];
-  /** Decades along the bottom. */
-  readonly xLog?: boolean;
-  /** The axis need not reach down to nothing: what matters are differences. */
-  readonly free?: boolean;
-  /** A limit or a target. */
-  readonly level?: { readonly at: number; readonly label: string };
-  /** Where something stands along the bottom, upright across the plot: "now". */
-  readonly upright?: { readonly at: number; readonly label: string };
-  /** Measured points behind the lines; or marks of another sort, `names` beside each of them, or the label beside the first. */
-  readonly points?: {
-    readonly x: ArrayLike<number>;
-    readonly y: ArrayLike<number>;
-    readonly label?: string;
-    readonly named?: boolean;
-    readonly names?: readonly string[];
-  };
-}
-
-export interface CurveLine {
-  readonly label: string;
-  readonly x: ArrayLike<number>;
-  readonly y: ArrayLike<number>;
-  /** Parts of a distribution that all come at one time: plug flow. `area` is the share of the whole. */
-  readonly spikes?: readonly { readonly x: number; readonly area: number }[];
-  /** 95 % of what is possible lies here. */
-  readonly band?: { readonly low: ArrayLike<number>; readonly high: ArrayLike<number> };
-  readonly accent?: boolean;
-  /** Leave the name at its end out: the axis says it. */
-  readonly unnamed?: boolean;
-  /** The name stands beside the line's middle, where its end is no place for it. */
-  readonly beside?: boolean;
-  /** What was computed, where the line only joins it. */
-  readonly dots?: { readonly x: ArrayLike<number>; readonly y: ArrayLike<number> };
-}
-
-export interface CurvesOptions extends PictureOptions {
-  readonly log?: boolean;
-  readonly width?: number;
-  readonly height?: number;
-}
+export type { CurveLine, Curves, CurvesOptions } from "./curves-input.js";
 
 /** Draws the lines with their names at their right ends, and spikes as arrows with their share. */
 export const drawCurves = (curves: Curves, options: CurvesOptions = {}): Svg => plotCurves(curves, options).drawing;
@@ -86,7 +41,9 @@ const panelRoom = 66;
 
 function inWords(curves: Curves): string {
   const lines = curves.lines.map((l) => {
-    const at = (l.spikes ?? []).map((s) => `${formatNumber(s.area * 100, 3)} % at ${formatNumber(s.x, 4)}`);
+    const at = (l.spikes ?? []).map(
+      (s) => `${s.words ?? `${formatNumber(s.area * 100, 3)} %`} at ${formatNumber(s.x, 4)}`,
+    );
     return at.length > 0 ? `${l.label} (with ${at.join(", ")} at once)` : l.label;
   });
   return `${curves.y} against ${curves.x}. Lines: ${lines.join("; ")}.${curves.points ? ` ${curves.points.named ? "Marked" : "Measured points"}: ${curves.points.label ?? curves.points.x.length}.` : ""}`;

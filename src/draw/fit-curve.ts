@@ -3,11 +3,11 @@ import { textWidth } from "../svg/measure.js";
 import { type Box, px, type Svg } from "../svg/svg.js";
 import { formatNumber } from "../units/format.js";
 import { type Axis, bottomAxis, leftAxis, leftRoom, linearAxis, logAxis } from "./axes.js";
-import { caption, drawCaption, type Words } from "./caption.js";
+import { caption, drawCaption, lineHeight, type Words } from "./caption.js";
 import { Clutter } from "./clutter.js";
 import { separated } from "./heights.js";
 import { placeAt } from "./line-labels.js";
-import { type PictureOptions, picture } from "./picture.js";
+import { narrow, type PictureOptions, picture } from "./picture.js";
 import { axisData, type PlotData, type Plotted } from "./plotted.js";
 import { area, largest, points, stems, trace } from "./traces.js";
 
@@ -46,7 +46,8 @@ export interface FitCurveOptions extends PictureOptions {
   readonly width?: number;
 }
 
-const plotHeight = 230;
+const tallest = 230;
+const lowest = 180; // of a narrow one
 const stripHeight = 52;
 
 /** Measured points small and open, the fitted line on top, its band behind; residuals below on the same time axis. */
@@ -80,17 +81,19 @@ function drawPanel(
   log: boolean,
 ): { svg: Svg; bottom: number; data: PlotData } {
   const lineName = curve.lineName ?? "fitted";
+  const plotHeight = width <= narrow ? lowest : tallest;
   const values = [...Array.from(r.measured), ...Array.from(r.fitted)];
-  const yRange = [top + 42 + plotHeight, top + 42] as const;
+  const head = 42 + (width <= narrow ? lineHeight : 0);
+  const yRange = [top + head + plotHeight, top + head] as const;
   const ay = log ? logAxis(values, yRange) : linearAxis([...values, 0, 1.06 * largest(values, 0)], yRange, 5, false);
   const worst = largest(Array.from(r.residual, Math.abs), 0) || 1;
-  const stripTop = top + 42 + plotHeight + 20;
+  const stripTop = top + head + plotHeight + 20;
   const ar = linearAxis([-worst, worst], [stripTop + stripHeight, stripTop], 2, false);
   const residualAxis = { ...ar, ticks: [-1, 0, 1].map((side) => (side === 0 ? 0 : side * roundBelow(worst))) };
   const left = Math.max(leftRoom(ay), leftRoom(residualAxis));
-  const plot: Box = { x: left, y: top + 42, width: width - left, height: plotHeight };
+  const plot: Box = { x: left, y: top + head, width: width - left, height: plotHeight };
   const strip: Box = { ...plot, y: stripTop, height: stripHeight };
-  const ax = linearAxis(Array.from(r.time), [plot.x, plot.x + plot.width], 8, false);
+  const ax = linearAxis(Array.from(r.time), [plot.x, plot.x + plot.width], width <= narrow ? 5 : 8, false);
   const floor = log ? ay.domain[0] * (1 - 1e-12) : Number.NEGATIVE_INFINITY;
   const measured = points(r.time, r.measured, ax, ay, "point", floor);
   const clutter = clutterOf(r, ax, ay);
@@ -99,16 +102,17 @@ function drawPanel(
     placeAt(words, besideLine(r.time, of, ax, ay), clutter, plot);
   const names = [
     name({ words: lineName, style: "name" }, r.fitted),
-    name({ words: `measured, ${r.time.length} points`, style: "quiet" }, r.measured),
+    name({ words: width <= narrow ? "measured" : `measured, ${r.time.length} points`, style: "quiet" }, r.measured),
   ];
   const says = [
     r.source ? `${r.label}, from ${r.source}` : r.label,
+    ...(width <= narrow ? [`${r.time.length} points`] : []),
     // where the plot has no room for names, they stand above it
     ...(names.includes(undefined) ? [`circles measured, line ${lineName}`] : []),
     ...(log && measured.hidden > 0 ? [`${measured.hidden} points at or below the axis not shown`] : []),
-  ].join("; ");
+  ];
   const svg = [
-    drawCaption(caption([{ words: says, style: "quiet" }], 0, top)),
+    drawCaption(caption(inLines(says, width), 0, top)),
     leftAxis(ay, plot, curve.value),
     r.band ? area(r.time, r.band.low, r.band.high, ax, ay) : "",
     measured.svg,
@@ -137,6 +141,18 @@ function drawPanel(
     ],
   };
   return { svg, bottom: strip.y + strip.height + (r.marks?.length ? 46 : 36), data };
+}
+
+/** Remarks one after the other, on as many lines as their width needs. */
+function inLines(says: readonly string[], width: number): Words[] {
+  const lines: string[] = [];
+  for (const s of says) {
+    const last = lines[lines.length - 1];
+    const longer = last === undefined ? s : `${last}; ${s}`;
+    if (last !== undefined && textWidth(longer, 11) > width) lines.push(s);
+    else lines[Math.max(0, lines.length - 1)] = longer;
+  }
+  return lines.map((words) => ({ words, style: "quiet" }));
 }
 
 /** 1, 2 or 5 times a power of ten, no more than a number. */

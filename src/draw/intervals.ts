@@ -1,11 +1,11 @@
 import { circle, line } from "../svg/marks.js";
 import { textWidth } from "../svg/measure.js";
-import type { Svg } from "../svg/svg.js";
+import type { Box, Svg } from "../svg/svg.js";
 import { type Axis, bottomAxis, linearAxis } from "./axes.js";
-import { caption, drawCaption, extent } from "./caption.js";
+import { caption, drawCaption, extent, lineHeight, type Words } from "./caption.js";
 import { separated } from "./heights.js";
 import { type PictureOptions, picture } from "./picture.js";
-import type { TableData } from "./plotted.js";
+import type { Plotted } from "./plotted.js";
 
 /** Values of one quantity in one unit, each with its 95 % interval. */
 export interface Intervals {
@@ -22,37 +22,35 @@ export interface IntervalRow {
   readonly value: number;
   readonly low: number;
   readonly high: number;
-  /** What stands at the right: the value in words, a probability. */
+  /** What stands at the right: the value in words. */
   readonly text: string;
+  /** Under the name: a probability. */
+  readonly under?: string;
   /** What the same residence times would give at the two ends of mixing. */
   readonly bounds?: { readonly segregated: number; readonly maximumMixedness: number };
   readonly accent?: boolean;
 }
 
-const rowHeight = 30;
-
-/** Names are broken at about so many characters. */
-const nameLength = 26;
+/** From the name of a row to its bar, from the bar to what is below it. */
+const room = { above: 12, below: 12, bounds: 14, between: 6, reference: 16 };
 /** Faces that stand in for the measured one are up to a fifth wider: no name may reach beyond the drawing in any. */
 const widerFace = 1.2;
 
-function nameLines(name: string): string[] {
+/** A name broken into lines of at most so many px; a single word is never broken. */
+function nameLines(name: string, width: number): string[] {
   const lines: string[] = [];
   for (const word of name.split(" ")) {
     const last = lines[lines.length - 1];
-    if (last !== undefined && last.length + 1 + word.length <= nameLength) lines[lines.length - 1] = `${last} ${word}`;
-    else lines.push(word);
+    const longer = last === undefined ? word : `${last} ${word}`;
+    if (last !== undefined && widerFace * textWidth(longer, 12, "bold") > width) lines.push(word);
+    else lines[Math.max(0, lines.length - 1)] = longer;
   }
   return lines;
 }
 
-/** One row per value: a bar for the interval, a dot for the value, thin ends for the bounds of mixing. */
-export function drawIntervals(of: Intervals, options: PictureOptions & { readonly width?: number } = {}): Svg {
+/** One row per value: its name and number, below them a bar for the interval, a dot for the value, thin ends for the bounds of mixing. */
+export function plotIntervals(of: Intervals, options: PictureOptions & { readonly width?: number } = {}): Plotted {
   const width = options.width ?? 640;
-  const top = (options.untitled ? 8 : 36) + (of.reference ? 16 : 0);
-  const left =
-    widerFace * Math.max(0, ...of.rows.flatMap((r) => nameLines(r.label).map((l) => textWidth(l, 12, "bold")))) + 16;
-  const right = widerFace * Math.max(0, ...of.rows.map((r) => textWidth(r.text, 11))) + 16;
   const all = of.rows.flatMap((r) => [
     r.value,
     r.low,
@@ -60,63 +58,54 @@ export function drawIntervals(of: Intervals, options: PictureOptions & { readonl
     r.bounds?.segregated ?? r.value,
     r.bounds?.maximumMixedness ?? r.value,
   ]);
-  const ax = linearAxis(
-    of.reference ? [...all, of.reference.value] : all,
-    [left, Math.max(left + 120, width - right)],
-    5,
-  );
-  const far = ax.at(ax.domain[1]);
-  let y = top;
-  const parts: Svg[] = [];
+  const ax = linearAxis(of.reference ? [...all, of.reference.value] : all, [8, width - 8], 5);
+  let y = options.untitled ? 0 : 34;
+  const parts: Svg[] = options.untitled ? [] : [drawCaption(caption([{ words: of.title, style: "title" }], 0, 0))];
+  const crossed: number[] = [];
+  const boxes: Box[] = [];
   for (const r of of.rows) {
-    const more = 7 * (nameLines(r.label).length - 1);
-    const middle = y + 12 + more;
-    parts.push(row(r, ax, middle, far));
-    y += Math.max(r.bounds ? rowHeight + 18 + more : 0, rowHeight + 2 * more);
+    const lines = nameLines(r.label, width - widerFace * textWidth(r.text, 11) - 16);
+    const names = [
+      ...lines.map(asName),
+      ...(r.under === undefined ? [] : [{ words: r.under, style: "quiet" as const }]),
+    ];
+    const middle = y + names.length * lineHeight + room.above;
+    parts.push(row(r, names, ax, y, middle, width));
+    crossed.push(middle);
+    boxes.push({ x: 0, y, width, height: middle + room.below - y });
+    y = middle + room.below + (r.bounds ? room.bounds : 0) + room.between;
   }
-  const plot = { x: left, y: top, width: far - left, height: y - top };
   if (of.reference) {
     const x = ax.at(of.reference.value);
-    parts.unshift(
-      line(x, top - 2, x, y, "leader"),
-      drawCaption(referenceName(of.reference.label, x, left, far, top - 18)),
-    );
+    parts.unshift(...crossed.map((at) => line(x, at - 10, x, at + 10, "leader")));
+    parts.push(line(x, y - 4, x, y + room.reference, "leader"), referenceName(of.reference.label, x, width, y - 4));
+    y += room.reference;
   }
-  if (!options.untitled) parts.unshift(drawCaption(caption([{ words: of.title, style: "title" }], 0, 0)));
+  const left = ax.at(ax.domain[0]);
+  const plot = { x: left, y, width: ax.at(ax.domain[1]) - left, height: 0 };
   parts.push(bottomAxis(ax, plot, of.quantity));
-  const view = { x: -16, y: -12, width: Math.max(width, far + right) + 32, height: y + 60 };
-  return picture(of.title, inWords(of), view, options.theme ?? "auto", parts);
+  const view = { x: -16, y: -12, width: width + 32, height: y + 56 };
+  const rows = of.rows.map((r) => [r.label, r.value, r.low, r.high]);
+  return {
+    drawing: picture(of.title, inWords(of), view, options.theme ?? "auto", parts),
+    data: { table: { head: ["", of.quantity, "low", "high"], rows, boxes } },
+  };
 }
 
-/** The rows as a table. */
-export const intervalsTable = (of: Intervals): TableData => ({
-  head: ["", of.quantity, "low", "high"],
-  rows: of.rows.map((r) => [r.label, r.value, r.low, r.high]),
-});
+const asName = (words: string): Words => ({ words, style: "name" });
 
-/** Changes compared with today: the same rows, today's value as the reference, the probability of being better at the right. */
-export const drawChanges = (of: Intervals, options: PictureOptions & { readonly width?: number } = {}): Svg =>
-  drawIntervals(of, options);
-
-function row(r: IntervalRow, ax: Axis, y: number, far: number): Svg {
+function row(r: IntervalRow, names: readonly Words[], ax: Axis, top: number, y: number, width: number): Svg {
   const look = r.accent ? " look" : "";
   return [
-    drawCaption(
-      caption(
-        nameLines(r.label).map((words) => ({ words, style: "name" as const })),
-        ax.at(ax.domain[0]) - 12,
-        y - 7 * nameLines(r.label).length,
-        "end",
-      ),
-    ),
-    r.bounds ? boundsMarks(r.bounds, ax, y, far) : "",
+    drawCaption(caption(names, 0, top)),
+    drawCaption(caption([{ words: r.text, style: r.accent ? "look" : "plain" }], width, top, "end")),
+    r.bounds ? boundsMarks(r.bounds, ax, y) : "",
     line(ax.at(r.low), y, ax.at(r.high), y, `interval${look}`),
     circle(ax.at(r.value), y, 4.5, `value${look}`),
-    drawCaption(caption([{ words: r.text, style: r.accent ? "look" : "plain" }], far + 14, y - 7)),
   ].join("");
 }
 
-function boundsMarks(bounds: NonNullable<IntervalRow["bounds"]>, ax: Axis, y: number, far: number): Svg {
+function boundsMarks(bounds: NonNullable<IntervalRow["bounds"]>, ax: Axis, y: number): Svg {
   const ends = [
     { x: ax.at(bounds.segregated), words: "segregated" },
     { x: ax.at(bounds.maximumMixedness), words: "maximum mixedness" },
@@ -128,7 +117,8 @@ function boundsMarks(bounds: NonNullable<IntervalRow["bounds"]>, ax: Axis, y: nu
     [(widths[0] + widths[1]) / 2 + 10],
   );
   // both names stay between the ends of the axis
-  const shift = Math.max(0, ax.at(ax.domain[0]) + widths[0] / 2 - first) - Math.max(0, second + widths[1] / 2 - far);
+  const [low, high] = ax.domain.map((v) => ax.at(v));
+  const shift = Math.max(0, low + widths[0] / 2 - first) - Math.max(0, second + widths[1] / 2 - high);
   return [
     line(ends[0].x, y, ends[1].x, y, "between"),
     ...ends.map((e) => line(e.x, y - 8, e.x, y + 8, "between")),
@@ -141,12 +131,14 @@ function boundsMarks(bounds: NonNullable<IntervalRow["bounds"]>, ax: Axis, y: nu
   ].join("");
 }
 
-function referenceName(words: string, x: number, left: number, far: number, y: number): ReturnType<typeof caption> {
-  const { width } = extent([{ words, style: "quiet" }]);
-  return caption([{ words, style: "quiet" }], Math.min(Math.max(x - width / 2, left), far - width), y);
+/** Beside the line, on the side where there is room. */
+function referenceName(words: string, x: number, width: number, y: number): Svg {
+  const wide = extent([{ words, style: "quiet" }]).width;
+  const right = x + 6 + wide <= width;
+  return drawCaption(caption([{ words, style: "quiet" }], right ? x + 5 : x - 5, y, right ? "start" : "end"));
 }
 
 function inWords(of: Intervals): string {
-  const rows = of.rows.map((r) => `${r.label}: ${r.text}`);
+  const rows = of.rows.map((r) => `${r.label}: ${r.text}${r.under === undefined ? "" : `, ${r.under}`}`);
   return `${of.quantity}. ${rows.join("; ")}.${of.reference ? ` Compared with ${of.reference.label}.` : ""}`;
 }

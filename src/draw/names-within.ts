@@ -2,7 +2,7 @@ import type { Box, Svg } from "../svg/svg.js";
 import type { Axis } from "./axes.js";
 import { extent, type Words } from "./caption.js";
 import { Clutter } from "./clutter.js";
-import type { Curves } from "./curves.js";
+import type { Curves } from "./curves-input.js";
 import { placeAt } from "./line-labels.js";
 
 type Spot = { readonly x: number; readonly y: number };

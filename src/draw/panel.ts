@@ -3,9 +3,10 @@ import { type Box, px, type Svg } from "../svg/svg.js";
 import { formatNumber } from "../units/format.js";
 import { type Axis, bottomAxis, leftAxis, leftRoom, linearAxis, logAxis, logSpan } from "./axes.js";
 import { caption, drawCaption } from "./caption.js";
-import type { CurveLine, Curves, CurvesOptions } from "./curves.js";
+import type { CurveLine, Curves, CurvesOptions } from "./curves-input.js";
 import { type EndLabel, endLabels, endRoom } from "./line-labels.js";
 import { namesWithin } from "./names-within.js";
+import { narrow } from "./picture.js";
 import { axisData, type PlotData } from "./plotted.js";
 import { area, largest, points, trace } from "./traces.js";
 
@@ -42,7 +43,7 @@ export function panel(
     ...(curves.upright ? [curves.upright.at] : []),
   ];
   const xRange = [plot.x, plot.x + plot.width] as const;
-  const ax = curves.xLog ? logSpan(times, xRange) : linearAxis(times, xRange, 7, false);
+  const ax = curves.xLog ? logSpan(times, xRange) : linearAxis(times, xRange, width <= narrow ? 5 : 7, false);
   const floor = options.log ? ay.domain[0] * (1 - 1e-12) : Number.NEGATIVE_INFINITY;
   const measured = curves.points ? points(curves.points.x, curves.points.y, ax, ay, "point", floor).svg : "";
   // the foremost line is drawn last
@@ -121,7 +122,7 @@ function spikes(l: CurveLine, named: boolean, ax: Axis, plot: Box): Svg {
     .map((s) => {
       const x = ax.at(s.x);
       const tip = plot.y + 18;
-      const words = `${named ? `${l.label}: ` : ""}${formatNumber(s.area * 100, 3)}\u2009% at ${formatNumber(s.x, 4)}`;
+      const words = `${named ? `${l.label}: ` : ""}${s.words ?? `${formatNumber(s.area * 100, 3)}\u2009%`} at ${formatNumber(s.x, 4)}`;
       const right = x > plot.x + plot.width * 0.7;
       return (
         line(x, base, x, tip + 6, "spike") +

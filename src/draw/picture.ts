@@ -2,6 +2,12 @@ import { element, rectangle } from "../svg/marks.js";
 import { type Box, escapeText, px, type Svg } from "../svg/svg.js";
 import { classesIn, drawingDefinitions, drawingStyle, type Theme } from "../svg/theme.js";
 
+/** Inner width of a drawing that stands beside another on a page, px; two of them with their margins fill an A4 sheet. */
+export const columnWidth = 348;
+
+/** From here down a drawing is narrow: what else stands side by side is put under one another. */
+export const narrow = 480;
+
 export interface PictureOptions {
   /** `auto` (default) follows the reader's screen and prints light. */
   readonly theme?: Theme;

@@ -13,6 +13,8 @@ export type FigureData = { readonly plots: readonly PlotData[] } | { readonly ta
 export interface TableData {
   readonly head: readonly string[];
   readonly rows: readonly (readonly (string | number)[])[];
+  /** Where each row stands in the drawing, px, for those who point at it. */
+  readonly boxes?: readonly Box[];
 }
 
 /** One pair of axes inside a drawing. */

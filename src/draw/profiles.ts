@@ -2,6 +2,7 @@ import { line } from "../svg/marks.js";
 import type { Box, Svg } from "../svg/svg.js";
 import { type Axis, bottomAxis, leftAxis, leftRoom, linearAxis } from "./axes.js";
 import { caption, drawCaption } from "./caption.js";
+import { columnsFor, withMargin } from "./cells.js";
 import { type PictureOptions, picture } from "./picture.js";
 import { axisData, type PlotData, type Plotted } from "./plotted.js";
 import { trace } from "./traces.js";
@@ -25,8 +26,8 @@ export interface ProfilePanel {
   readonly through: readonly [boolean, boolean];
 }
 
-const columns = 3;
-const cell = { width: 216, height: 186 };
+const wide = 648; // px, of three columns
+const cellHeight = 186;
 const plotHeight = 106;
 
 /**
@@ -34,18 +35,19 @@ const plotHeight = 106;
  * (with what declared ± bring, so that it may reach further than the curve), and, dashed, the parabola of linear theory. Where both curves differ, the interval of the profile is the one to believe
  * (Bates & Watts, Nonlinear Regression Analysis, 1988, chapter 6).
  */
-export function plotProfiles(of: Profiles, options: PictureOptions = {}): Plotted {
+export function plotProfiles(of: Profiles, options: PictureOptions & { readonly width?: number } = {}): Plotted {
+  const { columns, cellWidth } = columnsFor(options.width ?? wide);
   const top = options.untitled ? 0 : 34;
   const plots: PlotData[] = [];
   const cells = of.profiles.map((p, k) => {
-    const { svg, data } = panel(p, (k % columns) * cell.width, top + Math.floor(k / columns) * cell.height);
+    const { svg, data } = panel(p, (k % columns) * cellWidth, cellWidth, top + Math.floor(k / columns) * cellHeight);
     plots.push(data);
     return svg;
   });
   const title = options.untitled ? "" : drawCaption(caption([{ words: of.title, style: "title" }], 0, 0));
-  const wide = Math.min(columns, Math.max(1, of.profiles.length));
-  const height = top + Math.ceil(of.profiles.length / columns) * cell.height + 12;
-  const view = { x: -16, y: -12, width: wide * cell.width + 24, height };
+  const across = Math.min(columns, Math.max(1, of.profiles.length));
+  const height = top + Math.ceil(of.profiles.length / columns) * cellHeight + 12;
+  const view = { x: -16, y: -12, width: across * cellWidth + 24, height };
   return { drawing: picture(of.title, inWords(of), view, options.theme ?? "auto", [title, ...cells]), data: { plots } };
 }
 
@@ -55,15 +57,15 @@ function limitOf({ deviation, through }: ProfilePanel): number {
   return ends.length > 0 ? Math.min(...ends) : 1.96;
 }
 
-function panel(p: ProfilePanel, left: number, top: number): { svg: Svg; data: PlotData } {
+function panel(p: ProfilePanel, left: number, wide: number, top: number): { svg: Svg; data: PlotData } {
   const limit = limitOf(p) ** 2;
   const rise = Array.from(p.deviation, (d) => d * d);
   const yRange = [top + 24 + plotHeight, top + 24] as const;
   const ay = linearAxis([0, 1.25 * limit], yRange, 3, false);
   const x = left + leftRoom(ay);
-  const plot: Box = { x, y: top + 24, width: left + cell.width - 22 - x, height: plotHeight };
+  const plot: Box = { x, y: top + 24, width: left + wide - 22 - x, height: plotHeight };
   const ends = p.interval.filter((v) => v !== undefined);
-  const ax = linearAxis([...Array.from(p.value), ...ends], [plot.x, plot.x + plot.width], 3, false);
+  const ax = linearAxis(withMargin([...Array.from(p.value), ...ends]), [plot.x, plot.x + plot.width], 3, false);
   const foot = plot.y + plot.height;
   const [low, high] = [p.interval[0] ?? ax.domain[0], p.interval[1] ?? ax.domain[1]];
   const svg = [

@@ -2,6 +2,7 @@ import { circle, line, path } from "../svg/marks.js";
 import { type Box, px, type Svg } from "../svg/svg.js";
 import { bottomAxis, leftAxis, leftRoom, linearAxis } from "./axes.js";
 import { caption, drawCaption } from "./caption.js";
+import { columnsFor, withMargin } from "./cells.js";
 import { type PictureOptions, picture } from "./picture.js";
 import { axisData, type PlotData, type Plotted } from "./plotted.js";
 
@@ -29,8 +30,8 @@ export interface RegionAxis {
   readonly interval: readonly [number, number];
 }
 
-const columns = 3;
-const cell = { width: 216, height: 190 };
+const wide = 648; // px, of three columns
+const cellHeight = 190;
 const edgePoints = 96;
 
 /**
@@ -38,26 +39,23 @@ const edgePoints = 96;
  * single intervals as thin lines. A narrow slanting ellipse is a pair of which only a combination is known.
  * Ellipse: (p - p0)' C^-1 (p - p0) = 2 F(0.95; 2, freedom) (Draper & Smith, Applied Regression Analysis, 1998, section 5.4).
  */
-export function plotRegions(of: Regions, options: PictureOptions = {}): Plotted {
+export function plotRegions(of: Regions, options: PictureOptions & { readonly width?: number } = {}): Plotted {
+  const { columns, cellWidth } = columnsFor(options.width ?? wide);
   const top = options.untitled ? 0 : 34;
   const plots: PlotData[] = [];
   const cells = of.pairs.map((pair, k) => {
-    const { svg, data } = drawPair(
-      pair,
-      of.freedom,
-      (k % columns) * cell.width,
-      top + Math.floor(k / columns) * cell.height,
-    );
+    const left = (k % columns) * cellWidth;
+    const { svg, data } = drawPair(pair, of.freedom, left, cellWidth, top + Math.floor(k / columns) * cellHeight);
     plots.push(data);
     return svg;
   });
   const title = options.untitled ? "" : drawCaption(caption([{ words: of.title, style: "title" }], 0, 0));
-  const wide = Math.min(columns, Math.max(1, of.pairs.length));
+  const across = Math.min(columns, Math.max(1, of.pairs.length));
   const view = {
     x: -16,
     y: -12,
-    width: wide * cell.width + 24,
-    height: top + Math.ceil(of.pairs.length / columns) * cell.height + 12,
+    width: across * cellWidth + 24,
+    height: top + Math.ceil(of.pairs.length / columns) * cellHeight + 12,
   };
   return { drawing: picture(of.title, inWords(of), view, options.theme ?? "auto", [title, ...cells]), data: { plots } };
 }
@@ -76,13 +74,19 @@ export function regionEdge({ x, y, correlation }: RegionPair, freedom: number): 
 /** 95 % point of F with 2 and n degrees of freedom: closed for two, since the tail is (1 + 2x/n)^(-n/2). */
 const fQuantile95 = (n: number): number => (n / 2) * (0.05 ** (-2 / n) - 1);
 
-function drawPair(pair: RegionPair, freedom: number, left: number, top: number): { svg: Svg; data: PlotData } {
+function drawPair(
+  pair: RegionPair,
+  freedom: number,
+  left: number,
+  wide: number,
+  top: number,
+): { svg: Svg; data: PlotData } {
   const edge = regionEdge(pair, freedom);
   const yRange = [top + 22 + 110, top + 22] as const;
-  const ay = linearAxis([...edge.y, ...pair.y.interval], yRange, 3, false);
+  const ay = linearAxis(withMargin([...edge.y, ...pair.y.interval]), yRange, 3, false);
   const x = left + leftRoom(ay);
-  const plot: Box = { x, y: top + 22, width: left + cell.width - 22 - x, height: 110 };
-  const ax = linearAxis([...edge.x, ...pair.x.interval], [plot.x, plot.x + plot.width], 3, false);
+  const plot: Box = { x, y: top + 22, width: left + wide - 22 - x, height: 110 };
+  const ax = linearAxis(withMargin([...edge.x, ...pair.x.interval]), [plot.x, plot.x + plot.width], 3, false);
   const outline = edge.x.map((v, k) => `${k === 0 ? "M" : "L"}${px(ax.at(v))} ${px(ay.at(edge.y[k]))}`).join("");
   const [west, east] = pair.x.interval;
   const [south, north] = pair.y.interval;

@@ -2,7 +2,7 @@ import { line, path } from "../svg/marks.js";
 import { type Box, px, type Svg } from "../svg/svg.js";
 import { type Axis, bottomAxis, leftAxis, leftRoom, linearAxis } from "./axes.js";
 import { caption, drawCaption } from "./caption.js";
-import { type PictureOptions, picture } from "./picture.js";
+import { narrow, type PictureOptions, picture } from "./picture.js";
 import { axisData, type PlotData, type Plotted } from "./plotted.js";
 import { largest, points } from "./traces.js";
 
@@ -23,10 +23,12 @@ export interface ResidualReading {
 }
 
 const plotHeight = 110;
+const besideHeight = 78; // of the autocorrelation where it stands below
+const below = 62; // px from the residuals to what stands below
 const gap = 56; // px between the residuals and their autocorrelation
 
 /**
- * Weighted residuals over time, and beside them how far neighbours hang together. Grey bands hold 95 % of what independent
+ * Weighted residuals over time, and beside them how far neighbours hang together. Shaded bands hold 95 % of what independent
  * residuals give: 1.96 standard deviations, and 1.96/sqrt(n) (Box & Jenkins, Time Series Analysis, 1970, chapter 2).
  */
 export function plotResiduals(of: Residuals, options: PictureOptions & { readonly width?: number } = {}): Plotted {
@@ -42,7 +44,7 @@ export function plotResiduals(of: Residuals, options: PictureOptions & { readonl
     const row = drawRow(r, of, y, width);
     parts.push(row.svg);
     plots.push(...row.plots);
-    y += plotHeight + 88;
+    y += plotHeight + 88 + (width <= narrow ? besideHeight + below : 0);
   }
   const view = { x: -16, y: -12, width: width + 32, height: y + 4 };
   return { drawing: picture(of.title, inWords(of), view, options.theme ?? "auto", parts), data: { plots } };
@@ -53,8 +55,9 @@ function drawRow(r: ResidualReading, of: Residuals, top: number, width: number):
   const most = Math.max(3, 1.05 * largest(Array.from(r.value, Math.abs), 0));
   const ay = linearAxis([-most, most], [y + plotHeight, y], 4, false);
   const left = leftRoom(ay);
-  const side = Math.round(width * 0.3);
-  const plot: Box = { x: left, y, width: width - left - side - gap, height: plotHeight };
+  const stacked = width <= narrow;
+  const side = stacked ? width - left : Math.round(width * 0.3);
+  const plot: Box = { x: left, y, width: stacked ? side : width - left - side - gap, height: plotHeight };
   const ax = linearAxis(Array.from(r.time), [plot.x, plot.x + plot.width], 6, false);
   const times = `time, ${of.timeUnit}`;
   const own = [
@@ -66,9 +69,14 @@ function drawRow(r: ResidualReading, of: Residuals, top: number, width: number):
     bottomAxis(ax, plot, times),
   ];
   const lags = Array.from(r.autocorrelation, (_, k) => k + 1);
-  const ac = linearAxis([Math.min(0, ...Array.from(r.autocorrelation)) - 0.05, 1], [y + plotHeight, y], 4);
-  const beside: Box = { x: plot.x + plot.width + gap, y, width: side, height: plotHeight };
-  const al = linearAxis([0, lags.length + 0.5], [beside.x, beside.x + beside.width], 5, false);
+  const beside: Box = stacked
+    ? { x: left, y: y + plotHeight + below, width: side, height: besideHeight }
+    : { x: plot.x + plot.width + gap, y, width: side, height: plotHeight };
+  const low = Math.min(0, ...Array.from(r.autocorrelation)) - 0.05;
+  const ac = linearAxis([low, 1], [beside.y + beside.height, beside.y], stacked ? 3 : 4);
+  const whole = linearAxis([0, lags.length + 0.5], [beside.x, beside.x + beside.width], 5, false);
+  // There is nothing half a reading apart.
+  const al = { ...whole, ticks: whole.ticks.filter(Number.isInteger) };
   const half = 1.96 / Math.sqrt(Math.max(1, r.time.length));
   const bars = lags.map((k) => `M${px(al.at(k))} ${px(ac.at(0))}V${px(ac.at(r.autocorrelation[k - 1]))}`).join("");
   const neighbours = [

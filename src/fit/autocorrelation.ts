@@ -1,4 +1,4 @@
-import { type Chain, correlationTimes, entries, links } from "../numerics/autoregression.js";
+import { type Chain, correlationTimes, entries, links, worthTaking } from "../numerics/autoregression.js";
 import { random } from "../numerics/random.js";
 import type { Block } from "./observations.js";
 
@@ -20,6 +20,13 @@ export interface Autocorrelation {
   readonly strands: readonly Strand[];
 }
 
+/** What a fit took out of residuals. */
+export interface Taken {
+  readonly count: number;
+  /** Orthonormal, asked for where they count. */
+  columns(): readonly Float64Array[];
+}
+
 /** The residuals of one reading, which hang together as exp(-gap / time). */
 export interface Strand {
   readonly block: number;
@@ -37,19 +44,20 @@ export interface Strand {
  * How the residuals of each reading hang together: a first-order autoregression in time against independent residuals, chosen
  * where AICc is smaller by more than 2, or as the reading's `correlated:` says.
  * @param residuals  one per observation, any common scale
- * @param basis      orthonormal columns that the fit took out of them, longer by the priors or not at all
+ * @param taken      what the fit took out of them: columns longer by the priors or not at all
  * @see Burnham & Anderson, Model Selection and Multimodel Inference, 2nd ed. 2002, section 2.4
  */
 export function autocorrelationOf(
   blocks: readonly Block[],
   residuals: Float64Array,
-  basis: readonly Float64Array[],
+  { count, columns }: Taken,
 ): Autocorrelation {
+  const basis = worthTaking(count, residuals.length) ? columns() : [];
   const chains = blocks.map(chainOf);
   const n = chains.reduce((sum, c) => sum + c.rows.length, 0);
   const asked = blocks.map((b, k) => (b.declared.correlated === undefined ? chains[k] : none));
   const found = correlationTimes(residuals, basis, asked);
-  const unknowns = basis.length + 1;
+  const unknowns = count + 1;
   const left = n - unknowns - 2;
   // What AICc asks of one more unknown, and two more: with less between them the two are as good (Burnham & Anderson, section 2.6).
   const price = left > 0 ? 4 + (4 * (unknowns + 1)) / left : Number.POSITIVE_INFINITY;

@@ -1,6 +1,7 @@
 import { Condenser } from "./condensed.js";
+import { allCurveSlopes } from "./jacobian.js";
 import type { Block } from "./observations.js";
-import { type Problem, problemWith } from "./problem.js";
+import { type Evaluation, type Problem, problemWith } from "./problem.js";
 
 /** Least factor in points that is worth it. */
 const worth = 4;
@@ -28,4 +29,30 @@ export function condense(problem: Problem, x: Float64Array, margin: number): Pro
   });
   if (from * worth > setup.observations) return undefined;
   return problemWith({ ...setup, blocks, observations: from }, new Float64Array(from).fill(1));
+}
+
+/** What a curve and its slopes may be off from what few readings say of them, as parts of their peaks. */
+const curveOff = 1e-9;
+const slopeOff = 1e-7;
+
+/**
+ * Does a problem of fewer points still stand for the whole at a point: is the curve at all readings what the few say of it, and are its
+ * slopes, asked at the ties and between them? Then the optimum of the one is that of the other, and so are its errors.
+ * @returns the evaluation of the whole there
+ */
+export function stillStands(close: Problem, problem: Problem, x: Float64Array): Evaluation | undefined {
+  const at = problem.evaluate(x);
+  const condensed = close.setup.blocks.map((b) => b.condensed);
+  if (!at || !condensed.every((c, b) => c?.follows(at.curves[b], curveOff))) return undefined;
+  let from = 0;
+  const blocks = problem.setup.blocks.map((b, k): Block => {
+    const time = Float64Array.from(condensed[k]?.probes ?? [], (i) => b.time[i]);
+    from += time.length;
+    return { ...b, from: from - time.length, time, measured: time, doubts: [] };
+  });
+  const probing = problemWith({ ...problem.setup, blocks, observations: from }, new Float64Array(from).fill(1));
+  const there = probing.evaluate(x);
+  const slopes = there && allCurveSlopes(probing, x, there);
+  const follow = slopes?.every((s) => condensed.every((c, b) => !s || c?.followsProbes(s[b], slopeOff)));
+  return follow ? at : undefined;
 }

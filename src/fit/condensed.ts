@@ -6,6 +6,12 @@ export interface Condensed {
   readonly target: Float64Array;
   /** Weighs a curve at the times as the target is weighted. */
   weigh(values: Float64Array, into: Float64Array): void;
+  /** Is a curve, at all readings, still what few of them say of it, to this part of its peak? */
+  follows(curve: Float64Array, allowed: number): boolean;
+  /** Readings at the ties and half-way between them, of each stretch that few stand for. */
+  readonly probes: Int32Array;
+  /** The same for values at the probes alone. */
+  followsProbes(values: Float64Array, allowed: number): boolean;
 }
 
 /** Nodes of a stretch. */
@@ -44,7 +50,7 @@ export class Condenser {
     private readonly curve: Float64Array,
     private readonly margin: number,
   ) {
-    this.peak = curve.reduce((most, c) => Math.max(most, Math.abs(c)), 0);
+    this.peak = peakOf(curve);
   }
 
   condensed(): Condensed {
@@ -90,7 +96,17 @@ export class Condenser {
         at += nodes;
       }
     };
-    return { time, target, weigh };
+    const held = stretches.flatMap((s) => s.ties ?? []);
+    const follows = (all: Float64Array, part: number): boolean => {
+      const most = part * peakOf(all);
+      return stretches.every(({ from, to, ties }) => !ties || this.follows(from, to, ties, all, most));
+    };
+    const probes = Int32Array.from(held.flatMap(probesOf));
+    const followsProbes = (values: Float64Array, part: number): boolean => {
+      const most = part * peakOf(values);
+      return held.every((ties, s) => this.followsBetween(ties, values.subarray(s * probed, (s + 1) * probed), most));
+    };
+    return { time, target, weigh, follows, probes, followsProbes };
   }
 
   /** Halves stretches until the curve is a polynomial on each, or they are short. */
@@ -103,7 +119,7 @@ export class Condenser {
     for (let next = waiting.pop(); next; next = waiting.pop()) {
       const [from, to] = next;
       const ties = this.tiesOf(from, to);
-      if (to - from < fewest || (ties && this.follows(from, to, ties))) {
+      if (to - from < fewest || (ties && this.follows(from, to, ties, this.curve, allowed * this.peak))) {
         done.push({ from, to, ties: to - from < fewest ? undefined : ties });
       } else {
         const middle = (from + to) >> 1;
@@ -133,20 +149,33 @@ export class Condenser {
     return ties;
   }
 
-  /** Is the curve the polynomial through its values at the ties? */
-  private follows(from: number, to: number, ties: Int32Array): boolean {
-    const { curve, time, peak } = this;
+  /** Is a curve the polynomial through its values at the ties? */
+  private follows(from: number, to: number, ties: Int32Array, curve: Float64Array, most: number): boolean {
+    const { time } = this;
     const basis = new Lagrange(ties, time);
     const off = (i: number): boolean => {
       const l = basis.at(time[i]);
       let sum = 0;
       for (let k = 0; k < nodes; k++) sum += l[k] * curve[ties[k]];
-      return !(Math.abs(sum - curve[i]) <= allowed * peak);
+      return !(Math.abs(sum - curve[i]) <= most);
     };
     // A few first: they tell most of what is not smooth.
     const stride = Math.max(1, (to - from) >> 4);
     for (let i = from; i < to; i += stride) if (off(i)) return false;
     for (let i = from; i < to; i++) if (off(i)) return false;
+    return true;
+  }
+
+  /** The same of a stretch by values at its probes. */
+  private followsBetween(ties: Int32Array, values: Float64Array, most: number): boolean {
+    const basis = new Lagrange(ties, this.time);
+    const at = probesOf(ties);
+    for (let k = 1; k < probed; k += 2) {
+      const l = basis.at(this.time[at[k]]);
+      let sum = 0;
+      for (let j = 0; j < nodes; j++) sum += l[j] * values[2 * j];
+      if (!(Math.abs(sum - values[k]) <= most)) return false;
+    }
     return true;
   }
 
@@ -166,6 +195,17 @@ export class Condenser {
     }
     return { r: cholesky(gram, z), z };
   }
+}
+
+/** Ties, and readings half-way from one to the next, ascending. */
+const probed = 2 * nodes - 1;
+const probesOf = (ties: Int32Array): number[] =>
+  Array.from({ length: probed }, (_, k) => (ties[k >> 1] + ties[(k + 1) >> 1]) >> 1);
+
+function peakOf(curve: Float64Array): number {
+  let most = 0;
+  for (let i = 0; i < curve.length; i++) most = Math.max(most, Math.abs(curve[i]));
+  return most;
 }
 
 /** Lagrange's polynomials over the times of ties. */

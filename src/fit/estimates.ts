@@ -34,17 +34,24 @@ export interface Estimates {
   readonly carried: readonly number[];
 }
 
-/** Standard errors, intervals and correlations at the end of a fit. */
-export function estimatesOf({ problem, x, at }: Settled): Estimates {
+/**
+ * Standard errors, intervals and correlations at the end of a fit.
+ * @param stands  a problem of fewer points with the same slopes there, from which the errors follow as well
+ */
+export function estimatesOf(settled: Settled, stands = settled.problem): Estimates {
+  const { problem, x, at } = settled;
   const { setup } = problem;
   const n = setup.coordinates.length;
-  const columns = fullJacobian(problem, x, at);
+  const few = stands !== problem && setup.constants.length === 0 && setup.blocks.every((b) => b.doubts.length === 0);
+  const there = few ? stands.evaluate(x) : undefined;
+  const [of, where] = there ? [stands, there] : [problem, at];
+  const columns = fullJacobian(of, x, where);
   // A coordinate that moves the curve by no more than this over its whole range moves it by rounding alone.
   const rounding = 1e-6 * signalOf(problem);
   const nothing = columns.map((_, j) => (j < x.length ? rounding : 0));
   const kept = columns.flatMap((_, j) => (j < n || j >= x.length ? [j] : []));
   const own = kept.map((j) => columns[j]);
-  const basis = kept.length < columns.length ? orthonormalBasis(own) : fullBasis(problem, x, at);
+  const basis = kept.length < columns.length ? orthonormalBasis(own) : fullBasis(of, x, where);
   const plain = linearTheory(
     own,
     kept.map((j) => nothing[j]),
@@ -56,7 +63,12 @@ export function estimatesOf({ problem, x, at }: Settled): Estimates {
   // What a calibration leaves open bends whole curves: it is carried by itself, and is no reason to call readings correlated.
   const shifts = calibrationShifts(problem);
   const wider = orthonormalBasis(shifts, basis);
-  const autocorrelation = autocorrelationOf(setup.blocks, at.residuals, wider);
+  const autocorrelation = autocorrelationOf(setup.blocks, at.residuals, {
+    count: wider.length,
+    columns: () => (there ? fullBasis(problem, x, at) : wider),
+  });
+  // Errors that hang together are those of all readings, one after another.
+  if (there && autocorrelation.significant) return estimatesOf(settled);
   const hanging = hangingTogether(autocorrelation, plain, basis, wider.slice(basis.length), at.residuals, freedom);
   const slopes = setup.coordinates.map((c, j) => c.slope(x[j]));
   const constants = setup.constants.flatMap((c) => {

@@ -9,13 +9,11 @@ import { collector, hasErrors, type Report } from "../problems/report.js";
 import { trialOn } from "../resolve/trial-on.js";
 import { untraceable } from "../simulate/trace.js";
 import { formatQuantity } from "../units/format.js";
-import { dot } from "./basis.js";
-import { condense } from "./condense.js";
+import { condense, stillStands } from "./condense.js";
 import { criteriaOf } from "./criteria.js";
 import { estimatesOf } from "./estimates.js";
 import { findingsOf, flatLines } from "./findings.js";
 import type { ForwardModel } from "./forward.js";
-import { fullBasis } from "./jacobian.js";
 import { modelOf } from "./model-of.js";
 import { countOf, thinned } from "./observations.js";
 import { prepare } from "./prepare.js";
@@ -24,7 +22,7 @@ import { notLinear, profilesOf } from "./profiles.js";
 import { cannotFollow } from "./reacting-model.js";
 import { lackOfFit } from "./replicates.js";
 import type { Fit, FittedParameter, FittedReading, FoundOptimum } from "./result.js";
-import { descend, type Effort, fully, type Optimum, type SearchResult, searchFrom, type Watch } from "./search.js";
+import { descend, fully, type SearchResult, searchFrom, type Watch } from "./search.js";
 import { type Settled, settle } from "./settle.js";
 import { type Setup, valuesAt } from "./setup.js";
 import type { StartPlan } from "./starts.js";
@@ -98,8 +96,22 @@ export function fitWith(
     return { fit: undefined, problems };
   }
   if (nothingButNoise(setup, settled, report)) return { fit: undefined, problems };
-  return { fit: resultOf(setup, settled, found, options.profile === true, watch), problems };
+  const wanted = options.profile === true;
+  let [end, result] = [settled, resultOf(setup, settled, found, wanted, watch)];
+  // A look about the optimum may fall upon a better one.
+  for (let round = 0; round < mostBetter && result.better && !watch.cancelled(); round++) {
+    const lower = descend(end.problem, result.better, fully, watch);
+    const again = lower.sum < end.at.ofAll && settle(setup, end.weights, end.problem, lower, watch);
+    if (!again) break;
+    end = again;
+    const better = { ...found, best: lower, optima: [lower, ...found.optima], close: undefined };
+    result = resultOf(setup, again, better, wanted, watch);
+  }
+  return { fit: result.fit, problems };
 }
+
+/** So often a better optimum is followed. */
+const mostBetter = 3;
 
 /** A fit to nothing but constants would be numbers made of nothing. One reading that moves is enough. */
 function anySignal({ blocks }: Setup, report: Report): boolean {
@@ -128,9 +140,6 @@ const fewestForNoise = 12;
 /** Points that the search for the right valley looks at; the last descent takes them all. */
 const searchPoints = 600;
 
-/** The end of a descent that began at the optimum but for rounding. */
-const atLast: Effort = { ...fully, polish: false };
-
 function search(setup: Setup, problem: LinearProblem, file: Float64Array, plan: StartPlan, watch: Watch): SearchResult {
   if (file.length === 0) return alone(problem, file);
   const blocks = thinned(setup.blocks, searchPoints);
@@ -141,27 +150,14 @@ function search(setup: Setup, problem: LinearProblem, file: Float64Array, plan: 
   // All readings are met by way of few numbers that say the same, where there are such; then by themselves.
   const margin = Math.ceil((2 * setup.observations) / coarse.observations);
   const close = condense(problem, found.best.x, margin);
-  const near = close ? descend(close, found.best.x, fully, watch).x : found.best.x;
+  const few = close && descend(close, found.best.x, fully, watch);
+  const near = few?.x ?? found.best.x;
   const others = found.optima.slice(1).map((o) => ({ ...o, sum: problem.evaluate(o.x)?.ofAll ?? Infinity }));
-  const stood = close ? standing(problem, near) : undefined;
-  const best = { ...(stood ?? descend(problem, near, close ? atLast : fully, watch)), reached: found.best.reached };
-  const stands = close && { problem: close, standsFor: problem };
+  const stood = close && few?.converged ? stillStands(close, problem, near) : undefined;
+  const ended = stood ? { x: near, sum: stood.ofAll, converged: true } : descend(problem, near, fully, watch);
+  const best = { ...ended, reached: found.best.reached };
+  const stands = close && stood && { problem: close, standsFor: problem };
   return { best, optima: [best, ...others], cancelled: watch.cancelled(), close: stands };
-}
-
-/** Squared step in standard errors up to which a point is where all readings have their optimum. */
-const arrived = 1e-8;
-
-/**
- * A point as the optimum of a problem, where one Jacobian of all its readings, which the errors need anyway, has it that the next step
- * would be nothing; undefined where it would not.
- */
-function standing(problem: LinearProblem, x: Float64Array): Optimum | undefined {
-  const at = problem.evaluate(x);
-  if (!at) return undefined;
-  const promised = fullBasis(problem, x, at).reduce((sum, q) => sum + dot(q, at.residuals) ** 2, 0);
-  const variance = at.ofAll / at.residuals.length;
-  return promised <= arrived * variance ? { x, sum: at.ofAll, converged: true, reached: 1 } : undefined;
 }
 
 /** Nothing to search: the only point there is. */
@@ -171,9 +167,16 @@ function alone(problem: LinearProblem, x: Float64Array): SearchResult {
   return { best, optima: best ? [best] : [], cancelled: false };
 }
 
-function resultOf(setup: Setup, settled: Settled, found: SearchResult, profile: boolean, watch: Watch): Fit {
+function resultOf(
+  setup: Setup,
+  settled: Settled,
+  found: SearchResult,
+  profile: boolean,
+  watch: Watch,
+): { fit: Fit; better: Float64Array | undefined } {
   const { x, at, weights, problem } = settled;
-  const estimates = estimatesOf(settled);
+  const rises = found.close?.standsFor === problem ? found.close.problem : problem;
+  const estimates = estimatesOf(settled, rises);
   const unit = weights.inUnit ? setup.blocks[0].unit : undefined;
   const freeParameters = setup.coordinates.length + problem.linear;
   const { observations } = setup;
@@ -195,9 +198,8 @@ function resultOf(setup: Setup, settled: Settled, found: SearchResult, profile: 
     apart: setup.coordinates.some((c) => c.trial !== undefined),
   });
   const profiles = profile && told ? profilesOf(settled, estimates, watch) : undefined;
-  const rises = found.close?.standsFor === problem ? found.close.problem : problem;
   const notHolding = told && !profiles ? notLinear(rises, x, estimates, watch) : [];
-  return {
+  const fit: Fit = {
     parameters: found.cancelled ? estimates.parameters.map(unsure) : estimates.parameters,
     values: valuesAt(setup, x),
     nuisance: estimates.nuisance,
@@ -236,6 +238,7 @@ function resultOf(setup: Setup, settled: Settled, found: SearchResult, profile: 
       lackOfFit: lack,
     }),
   };
+  return { fit, better: notHolding.find((p) => p.better)?.better };
 }
 
 /** Where a fit was cut short there is a best so far, and no telling how good it is. */

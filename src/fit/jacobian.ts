@@ -20,7 +20,7 @@ export function projectedJacobian(problem: Problem, x: Float64Array, at: Evaluat
   const { setup, projectors, priors } = problem;
   const n = x.length;
   const jacobian = new Float64Array(at.residuals.length * n);
-  const slopes = allCurveSlopes(setup, x, at);
+  const slopes = allCurveSlopes(problem, x, at);
   for (const [b, projector] of projectors.entries())
     projector.slopes(
       at.curves[b],
@@ -43,7 +43,7 @@ export function fullJacobian(problem: Problem, x: Float64Array, at: Evaluation):
   if (last.at === at && last.columns) return last.columns;
   const rows = at.residuals.length;
   const columns: Float64Array[] = [];
-  const slopes = allCurveSlopes(setup, x, at);
+  const slopes = allCurveSlopes(problem, x, at);
   for (let j = 0; j < x.length; j++) {
     const c = new Float64Array(rows);
     const moved = slopes[j];
@@ -112,7 +112,12 @@ function weighCurves(
 }
 
 /** d curves / d x[j], SI per unit of the coordinate: exact where the model is, by differences where it is not. */
-function allCurveSlopes(setup: Setup, x: Float64Array, at: Evaluation): (readonly Float64Array[] | undefined)[] {
+export function allCurveSlopes(
+  { setup, known }: Problem,
+  x: Float64Array,
+  at: Evaluation,
+): readonly (readonly Float64Array[] | undefined)[] {
+  if (known?.curves === at.curves) return known.slopes;
   const directions = Array.from(x, (u, j) => {
     const c = setup.coordinates[j];
     if (!c) {

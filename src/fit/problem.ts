@@ -25,6 +25,13 @@ export interface Prior {
   slope(x: number): number;
 }
 
+/** The curves of a point and how they move by coordinate, as `curvesOf` and `allCurveSlopes` give them. */
+export interface Known {
+  readonly x: Float64Array;
+  readonly curves: readonly Float64Array[];
+  readonly slopes: readonly (readonly Float64Array[] | undefined)[];
+}
+
 /** A least-squares problem with its linear terms already taken out. */
 export interface Problem {
   readonly setup: Setup;
@@ -41,6 +48,8 @@ export interface Problem {
     /** Orthonormal, of all the columns. */
     basis?: readonly Float64Array[] | undefined;
   };
+  /** What is known of one point before it is asked for. */
+  readonly known: Known | undefined;
   /** undefined where the point makes no vessel. */
   evaluate(x: Float64Array): Evaluation | undefined;
 }
@@ -48,8 +57,9 @@ export interface Problem {
 /**
  * The problem at given weights and priors. It remembers the last point, so asking twice costs once.
  * @param weight  1 / SI of each observation; owned by the problem from here on
+ * @param known   of the same model at the same times
  */
-export function problemWith(setup: Setup, weight: Float64Array, priors: readonly Prior[] = []): Problem {
+export function problemWith(setup: Setup, weight: Float64Array, priors: readonly Prior[] = [], known?: Known): Problem {
   const projectors = setup.blocks.map((b) => projectorFor(b, weight));
   const linear = projectors.reduce((n, p) => n + p.terms, 0);
   let lastPoint: Float64Array | undefined;
@@ -58,11 +68,11 @@ export function problemWith(setup: Setup, weight: Float64Array, priors: readonly
     if (lastPoint && samePoint(lastPoint, x)) return found;
     lastPoint = Float64Array.from(x);
     const facts = factsAt(setup, x);
-    const curves = curvesOf(setup, facts);
+    const curves = known && samePoint(known.x, x) ? known.curves : curvesOf(setup, facts);
     found = curves && withTerms(setup, projectors, priors, facts, curves, x);
     return found;
   };
-  return { setup, weight, projectors, priors, linear, last: {}, evaluate };
+  return { setup, weight, projectors, priors, linear, last: {}, known, evaluate };
 }
 
 function withTerms(

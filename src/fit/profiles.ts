@@ -43,10 +43,14 @@ export interface NotLinear {
   readonly name: string;
   /** Rise of the sum of squares at an end of the linear interval, the others at their best, over what it should be. */
   readonly times: number;
+  /** Where the sum of squares was found to be less than at the optimum. */
+  readonly better: Float64Array | undefined;
 }
 
 /** Off by so much in the rise, an interval is off by about a quarter. */
 const tolerated = 1.5;
+/** A fall by so much of the rise that was expected is another optimum. */
+const missed = 1e-3;
 
 /**
  * Looks at the ends of the linear intervals: there the sum of squares, all others at their best, should have risen by t^2 times
@@ -74,8 +78,8 @@ export function notLinear(
     const off = (times: number): number => Math.max(times, 1 / Math.max(times, 1e-9));
     const [worst] = ends.sort((a, b) => off(b.times) - off(a.times));
     if (!worst || off(worst.times) <= tolerated) return [];
-    const { sum } = descend(problem, worst.point, closely, watch, j);
+    const { sum, x: end } = descend(problem, worst.point, closely, watch, j);
     const times = (sum - least) / (t * t * variance);
-    return off(times) > tolerated ? [{ name: c.name, times }] : [];
+    return off(times) > tolerated ? [{ name: c.name, times, better: times < -missed ? end : undefined }] : [];
   });
 }

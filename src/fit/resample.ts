@@ -10,11 +10,11 @@ import { betweenReadings } from "./between-readings.js";
 import { linearTheory } from "./covariance.js";
 import { hangingTogether } from "./hanging-together.js";
 import type { Facts } from "./held.js";
-import { fullJacobian } from "./jacobian.js";
+import { allCurveSlopes, fullJacobian } from "./jacobian.js";
 import { modelOf } from "./model-of.js";
 import type { Block } from "./observations.js";
 import { prepare } from "./prepare.js";
-import { type Prior, problemWith } from "./problem.js";
+import { type Known, type Prior, problemWith } from "./problem.js";
 import { descendCensored, seenWithinLimits } from "./refit-censored.js";
 import { descend, type Effort, type Optimum, type Watch } from "./search.js";
 import { freedomOf, type Settled, settle } from "./settle.js";
@@ -94,6 +94,7 @@ class Resampler implements Refits {
   private readonly fitted: readonly Float64Array[];
   private readonly gaps;
   private readonly t: number;
+  private readonly known: Known | undefined;
 
   constructor(
     private readonly settled: Settled,
@@ -105,7 +106,10 @@ class Resampler implements Refits {
     const freedom = Math.max(1, freedomOf(problem));
     const columns = fullJacobian(problem, x, at).filter((_, j) => j < setup.coordinates.length || j >= x.length);
     const basis = orthonormalBasis(columns);
-    const autocorrelation = autocorrelationOf(setup.blocks, at.residuals, basis);
+    const autocorrelation = autocorrelationOf(setup.blocks, at.residuals, {
+      count: basis.length,
+      columns: () => basis,
+    });
     const hanging = hangingTogether(autocorrelation, linearTheory(columns), basis, [], at.residuals, freedom);
     const { significant, lag1 } = autocorrelation;
     this.phi = new Map(autocorrelation.strands.map((s) => [s.block, s.phi]));
@@ -118,6 +122,8 @@ class Resampler implements Refits {
     this.spread = Math.sqrt(hanging?.variance ?? at.ofData / freedom);
     this.inflate = this.spread / Math.sqrt(at.ofData / setup.observations);
     this.fitted = setup.blocks.map((b, k) => fittedCurve(b.time, b.origin, at, k));
+    // Every refit begins here, with other data but the same curves, where no fact was drawn anew.
+    if (setup.constants.length === 0) this.known = { x, curves: at.curves, slopes: allCurveSlopes(problem, x, at) };
     this.gaps = delayWalks(setup, x).filter(({ gap }) => gap > 0);
     this.between = this.gaps.map(({ index }) => index);
     this.t = studentTQuantile(0.975, hanging?.freedom ?? freedom);
@@ -168,7 +174,7 @@ class Resampler implements Refits {
     const { problem, x, at } = this.settled;
     if (problem.setup.blocks.some((b) => b.censored))
       return descendCensored(setup, priors, { x, at, before: problem.weight }, refitting, unwatched);
-    const refitted = problemWith(setup, problem.weight, priors);
+    const refitted = problemWith(setup, problem.weight, priors, this.known);
     return { problem: refitted, ...descend(refitted, x, refitting, unwatched) };
   }
 

@@ -85,7 +85,8 @@ export function searchFrom(problem: Problem, file: Float64Array, plan: StartPlan
   );
   if (ends.length === 0) return { best: undefined, optima: [], cancelled: watch.cancelled() };
   const hopped = counts.walked > 0 ? hop(problem, ends[0], watch) : ends[0];
-  const best = { ...descend(problem, hopped.x, fully, watch), reached: hopped.reached };
+  const free = descend(problem, hopped.x, fully, watch);
+  const best = { ...onBounds(problem, free, watch), reached: hopped.reached };
   return { best, optima: distinct([best, ...ends], 1e-3), cancelled: watch.cancelled() };
 }
 
@@ -159,6 +160,25 @@ function distinct(ends: readonly Optimum[], apart: number): Optimum[] {
     else kept[same] = { ...kept[same], reached: kept[same].reached + end.reached };
   }
   return kept;
+}
+
+/** So near to a bound an end is tried on it as well; u. */
+const beside = 1e-3;
+
+/** A better end where coordinates that are all but on a bound lie on it: the sum of squares may jump there, as a density does where a tank becomes whole. */
+export function onBounds(problem: Problem, end: Optimum, watch: Watch): Optimum {
+  let best = end;
+  for (const [j, { from, to }] of problem.setup.coordinates.entries()) {
+    const bound = end.x[j] - from < beside ? from : to - end.x[j] < beside ? to : undefined;
+    if (bound === undefined || watch.cancelled()) continue;
+    const start = withCoordinate(best.x, j, bound);
+    if (!problem.evaluate(start)) continue;
+    const held = descend(problem, start, fully, watch, j);
+    if (!(held.sum < best.sum * (1 - 1e-9))) continue;
+    const again = descend(problem, held.x, fully, watch);
+    best = again.sum <= held.sum && again.converged ? again : held;
+  }
+  return best;
 }
 
 function hop(problem: Problem, from: Optimum, watch: Watch): Optimum {

@@ -67,8 +67,13 @@ export function entries(phi: Float64Array, power: 1 | 2): number {
   return sum;
 }
 
-/** Columns and rows up to which what the fit took out of the residuals is counted. */
+/** Columns and rows up to which what the fit took out of the residuals is counted, and rows to a column: of so many they are nothing. */
 const mostWork = 4e6;
+const mostRows = 2000;
+
+/** Does what a fit took out of residuals count in how they hang together? */
+export const worthTaking = (columns: number, rows: number): boolean =>
+  columns ** 2 * rows <= mostWork && rows <= mostRows * columns;
 
 /**
  * Correlation times of chains from the residuals of a least-squares fit by restricted maximum likelihood, which counts that the
@@ -82,7 +87,7 @@ export function correlationTimes(
   basis: readonly Float64Array[],
   chains: readonly Chain[],
 ): CorrelationTime[] {
-  const kept = basis.length ** 2 * residuals.length > mostWork ? [] : basis;
+  const kept = worthTaking(basis.length, residuals.length) ? basis : [];
   const all = new Restricted(residuals, kept, chains);
   for (let sweep = 0; sweep < (chains.length > 1 ? 2 : 1); sweep++) for (const c of chains.keys()) all.improve(c);
   return chains.map((_, c) => ({ time: all.times[c], gain: all.gain(c) }));

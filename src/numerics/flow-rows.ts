@@ -1,5 +1,5 @@
 import { flowOrder } from "./flow-order.js";
-import type { Graph } from "./graph.js";
+import { adjacency, type Graph } from "./graph.js";
 
 /** What nodes get from one another, as sparse rows in flow order. Places count in that order. */
 export interface FlowRows {
@@ -29,43 +29,72 @@ export function flowRows(graph: Graph, share: ArrayLike<number>): FlowRows {
   const order = flowOrder(graph, share, new Float64Array(size).fill(1));
   const place = new Int32Array(size);
   for (let p = 0; p < size; p++) place[order[p]] = p;
-  // Edges by column first: handing them out in that order leaves the columns of every row ascending.
-  const byColumn = new Int32Array(size + 1);
-  for (let k = 0; k < share.length; k++) byColumn[place[from[k]] + 1]++;
-  for (let p = 0; p < size; p++) byColumn[p + 1] += byColumn[p];
-  const edges = new Int32Array(share.length);
-  for (let k = 0; k < share.length; k++) edges[byColumn[place[from[k]]]++] = k;
-  const room = new Int32Array(size + 1);
-  for (let k = 0; k < share.length; k++) room[place[to[k]] + 1]++;
-  for (let p = 0; p < size; p++) room[p + 1] += room[p];
+  const into = adjacency(size, to);
   const column = new Int32Array(share.length);
   const value = new Float64Array(share.length);
   const own = new Float64Array(size);
-  const end = room.slice(0, size);
-  for (let e = 0; e < edges.length; e++) {
-    const k = edges[e];
-    const [row, c] = [place[to[k]], place[from[k]]];
-    if (row === c) own[row] += share[k];
-    else if (end[row] > room[row] && column[end[row] - 1] === c) value[end[row] - 1] += share[k];
-    else {
-      column[end[row]] = c;
-      value[end[row]++] = share[k];
-    }
-  }
   const start = new Int32Array(size + 1);
   const middle = new Int32Array(size);
   let n = 0;
   for (let p = 0; p < size; p++) {
-    middle[p] = n;
-    for (let e = room[p]; e < end[p]; e++) {
-      if (column[e] < p) middle[p] = n + 1;
-      column[n] = column[e];
-      value[n++] = value[e];
+    const first = n;
+    const node = order[p];
+    for (let e = into.start[node]; e < into.start[node + 1]; e++) {
+      const k = into.edges[e];
+      const c = place[from[k]];
+      if (c === p) own[p] += share[k];
+      else {
+        column[n] = c;
+        value[n++] = share[k];
+      }
     }
+    sortRow(column, value, first, n);
+    n = merged(column, value, first, n);
+    let m = first;
+    while (m < n && column[m] < p) m++;
+    middle[p] = m;
     start[p + 1] = n;
   }
   const rows = { size, order, start, middle, column: column.subarray(0, n), share: value.subarray(0, n), own };
   return { ...rows, pair: pairs(rows) };
+}
+
+/** Sorts a row by its columns, equal ones staying in their order: by insertion where it is short. */
+function sortRow(column: Int32Array, value: Float64Array, first: number, end: number): void {
+  if (end - first > 40) {
+    const [c, v] = [column.slice(first, end), value.slice(first, end)];
+    Array.from(c.keys())
+      .sort((a, b) => c[a] - c[b])
+      .forEach((from, k) => {
+        column[first + k] = c[from];
+        value[first + k] = v[from];
+      });
+    return;
+  }
+  for (let e = first + 1; e < end; e++) {
+    const [c, v] = [column[e], value[e]];
+    let at = e;
+    for (; at > first && column[at - 1] > c; at--) {
+      column[at] = column[at - 1];
+      value[at] = value[at - 1];
+    }
+    column[at] = c;
+    value[at] = v;
+  }
+}
+
+/** Adds up what stands in a sorted row under one column; returns the new end. */
+function merged(column: Int32Array, value: Float64Array, first: number, end: number): number {
+  let last = first - 1;
+  for (let e = first; e < end; e++) {
+    if (last >= first && column[last] === column[e]) value[last] += value[e];
+    else {
+      last++;
+      column[last] = column[e];
+      value[last] = value[e];
+    }
+  }
+  return last + 1;
 }
 
 /** What an incomplete factor leaves out is handed to the diagonal to this part, so that sums over rows stay nearly right. */

@@ -1,6 +1,7 @@
+import { costOfPattern, findPattern } from "./dependence.js";
 import type { Pattern } from "./linear-solver.js";
 import { type Halt, integrateByOdex, type StretchResult } from "./odex.js";
-import { radauIntegrator, type StiffResult, type StiffStretch } from "./stiff.js";
+import { radauIntegrator, type StiffIntegrator, type StiffResult, type StiffStretch } from "./stiff.js";
 import { type MethodUsed, methodRace } from "./stiff-switch.js";
 
 export interface IntegrateOptions {
@@ -18,7 +19,10 @@ export interface IntegrateOptions {
    * without one. Left out: by differences. One that is off costs steps, not accuracy.
    */
   readonly jacobian?: (t: number, y: Float64Array, entries: Float64Array) => void;
-  /** Where the Jacobian may have entries. Without it: everywhere, at a cost that grows with n^3. */
+  /**
+   * Where the Jacobian may have entries. Without it and without a `jacobian` it is found by asking the right-hand side at states that are
+   * not numbers; where that fails: everywhere, at a cost that grows with n^3.
+   */
   readonly pattern?: Pattern;
   /** Relative tolerance of a step, default 1e-9; under 1e-14 it is taken as 1e-14. */
   readonly relative?: number;
@@ -116,7 +120,18 @@ interface Method {
 
 function methodOf(o: IntegrateOptions, size: number, relative: number): Method {
   if (o.method === "nonstiff") return { run: integrateByOdex, used: () => "nonstiff" };
-  const stiff = () => radauIntegrator({ ...o, size }, relative);
+  const stiff = (): StiffIntegrator => {
+    let made: StiffIntegrator | undefined;
+    return (p, y, output) => {
+      if (made) return made(p, y, output);
+      const ask = o.pattern === undefined && o.jacobian === undefined;
+      const found = ask ? findPattern(o.rhs, p.from, y) : undefined;
+      made = radauIntegrator({ ...o, size, ...(found && { pattern: found }) }, relative);
+      const result = made(p, y, output);
+      const cost = ask ? costOfPattern(size) : 0;
+      return { ...result, rhs: result.rhs + cost, work: result.work + cost };
+    };
+  };
   return o.method === "stiff" ? { run: stiff(), used: () => "stiff" } : methodRace(stiff);
 }
 

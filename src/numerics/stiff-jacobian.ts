@@ -50,6 +50,7 @@ export function jacobianOf(problem: StiffProblem): Jacobian {
     return { pattern, value, diagonal, cost: 0, evaluate };
   }
   const { group, count } = separateColumns(pattern);
+  const { first, entry, row } = byGroup(pattern, group, count);
   const step = new Float64Array(n);
   const moved = new Float64Array(n);
   const there = new Float64Array(n);
@@ -67,11 +68,9 @@ export function jacobianOf(problem: StiffProblem): Jacobian {
     for (let g = 0; g < count; g++) {
       for (let j = 0; j < n; j++) moved[j] = group[j] === g ? y[j] + step[j] : y[j];
       rhs(t, moved, there);
-      for (let i = 0; i < n; i++) {
-        for (let k = pattern.start[i]; k < pattern.start[i + 1]; k++) {
-          const j = pattern.column[k];
-          if (group[j] === g) value[k] = (there[i] - f[i]) / step[j];
-        }
+      for (let e = first[g]; e < first[g + 1]; e++) {
+        const k = entry[e];
+        value[k] = (there[row[e]] - f[row[e]]) / step[pattern.column[k]];
       }
     }
   };
@@ -79,6 +78,23 @@ export function jacobianOf(problem: StiffProblem): Jacobian {
 }
 
 const rootOfRounding = 2 ** -26;
+
+/** Entries of a pattern by the group of their column, with their rows. */
+function byGroup({ size: n, start, column }: Pattern, group: Int32Array, count: number) {
+  const first = new Int32Array(count + 1);
+  for (const j of column) first[group[j] + 1]++;
+  for (let g = 0; g < count; g++) first[g + 1] += first[g];
+  const next = first.slice(0, count);
+  const [entry, row] = [new Int32Array(column.length), new Int32Array(column.length)];
+  for (let i = 0; i < n; i++) {
+    for (let k = start[i]; k < start[i + 1]; k++) {
+      const e = next[group[column[k]]]++;
+      entry[e] = k;
+      row[e] = i;
+    }
+  }
+  return { first, entry, row };
+}
 
 function withDiagonal({ size: n, start, column }: Pattern) {
   const rows: number[] = [];
@@ -103,6 +119,7 @@ function withDiagonal({ size: n, start, column }: Pattern) {
  * @see A.R. Curtis, M.J.D. Powell, J.K. Reid, IMA J. Appl. Math. 13 (1974) 117-119
  */
 export function separateColumns({ size: n, start, column }: Pattern): { group: Int32Array; count: number } {
+  if (column.length === n * n) return { group: Int32Array.from({ length: n }, (_, j) => j), count: n };
   const group = new Int32Array(n).fill(-1);
   const rowsOf: number[][] = Array.from({ length: n }, () => []);
   for (let i = 0; i < n; i++) for (let k = start[i]; k < start[i + 1]; k++) rowsOf[column[k]].push(i);

@@ -13,6 +13,8 @@ export interface SwitchedResult extends StretchResult {
 const firstPatience = 1000;
 /** Part of that work that a try may cost. */
 const tryPart = 1 / 4;
+/** Steps that an implicit method gets in a try, to find its length. */
+const leastTried = 6;
 /** How much faster the other must be to take over. */
 const advantage = 2;
 
@@ -26,7 +28,8 @@ export interface MethodRace {
 /**
  * Chooses between an explicit and an implicit method by what they achieve: one works until its patience is up, then the
  * other goes on for a quarter of that work, and takes over if it gets on twice as fast. Patience doubles while the choice
- * holds, so that trying costs at most a quarter, and a wrong choice is found out before it has doubled the work so far.
+ * holds, so that trying costs about a quarter (a first try may cost more: an implicit method needs its Jacobian, and some
+ * steps to find their length), and a wrong choice is found out before it has doubled the work so far.
  * All is counted, nothing timed, so that a run is the same on every machine. Tries are no waste: their steps are kept.
  * @param stiff makes the implicit integrator, when it is first needed
  */
@@ -47,7 +50,15 @@ export function methodRace(stiff: () => StiffIntegrator): MethodRace {
 
       const go = (method: Method, budget: number): Leg => {
         const hint = method === "stiff" && stepHint !== undefined ? { firstStep: stepHint } : {};
-        const stretch = { ...p, from: t, maxSteps: Math.max(1, p.maxSteps - total.steps), outputs, budget, ...hint };
+        const stretch = {
+          ...p,
+          from: t,
+          maxSteps: Math.max(1, p.maxSteps - total.steps),
+          outputs,
+          budget,
+          leastSteps: leastTried,
+          ...hint,
+        };
         let reached = 0;
         const count = (state: Float64Array): void => {
           reached++;
@@ -87,7 +98,7 @@ export function methodRace(stiff: () => StiffIntegrator): MethodRace {
         if (!rival.halt && (leg.halt || rival.pace > advantage * leg.pace)) {
           current = other;
           patience = firstPatience;
-        } else patience *= 2;
+        } else patience = Math.max(2 * patience, rival.work / tryPart);
         spent = 0;
       }
     },

@@ -9,6 +9,8 @@ import { evaluate, stepPolynomial } from "./stiff-polynomial.js";
 export interface StiffStretch extends Stretch {
   /** Length of the first step, if something is known of it. */
   readonly firstStep?: number;
+  /** Steps that are made whatever the budget: what a Jacobian costs is then not laid on a first short one alone. */
+  readonly leastSteps?: number;
   /** How long a step from t may be at most. */
   readonly longest?: (t: number) => number;
   /** Error, in units of the tolerance, of what hangs on a trial step from t, y with stages y + z: it counts beside the state's. */
@@ -189,7 +191,8 @@ export function radauIntegrator(given: StiffProblem, relative: number, stages = 
       stale = method.contraction > goodContraction;
       if (stale || grown < 1 || grown > smallGrowth) h *= grown;
       if (counts.steps >= p.maxSteps) return finish({ halt: "too-many-steps" });
-      if (p.budget !== undefined && work() >= p.budget) return finish({ paused: true });
+      if (p.budget !== undefined && work() >= p.budget && counts.steps >= (p.leastSteps ?? 1))
+        return finish({ paused: true });
     }
   };
 

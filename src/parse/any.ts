@@ -1,4 +1,7 @@
 import { checkTrial } from "../check/trial.js";
+import type { Chemistry } from "../model/chemistry.js";
+import type { Duty } from "../model/duty.js";
+import type { ChangeDocument, Study } from "../model/study.js";
 import type { Trial } from "../model/trial.js";
 import type { Problem } from "../problems/problem.js";
 import { collector } from "../problems/report.js";
@@ -18,8 +21,17 @@ import { parseTrial } from "./trial.js";
 export interface AnyDocument {
   readonly kind: DocumentKind | "change" | undefined;
   readonly network: NetworkDocument | undefined;
+  /** Of any other sort, what was understood. */
+  readonly document?: Understood | undefined;
   readonly problems: readonly Problem[];
 }
+
+export type Understood =
+  | { readonly is: "trial"; readonly document: Trial }
+  | { readonly is: "chemistry"; readonly document: Chemistry }
+  | { readonly is: "duty"; readonly document: Duty }
+  | { readonly is: "study"; readonly document: Study }
+  | { readonly is: "change"; readonly document: ChangeDocument };
 
 /** Reads any of the five documents, told apart by the first key; a network that is only a change is one too. */
 export function parseAny(text: string, options: ParseOptions = {}): AnyDocument {
@@ -28,7 +40,8 @@ export function parseAny(text: string, options: ParseOptions = {}): AnyDocument 
   if (!tree) return { kind: undefined, network: undefined, problems: reading.problems };
   const kind = documentKind(tree);
   if (kind === "network" && isChange(tree)) {
-    return { kind: "change", network: undefined, problems: parseChange(text, options).problems };
+    const { document, problems } = parseChange(text, options);
+    return { kind: "change", network: undefined, ...understood("change", document), problems };
   }
   if (kind === "network") {
     const parsed = parseNetwork(reading, options);
@@ -40,11 +53,27 @@ export function parseAny(text: string, options: ParseOptions = {}): AnyDocument 
     return { kind, network: undefined, problems: [...reading.problems, ...problems] };
   }
   if (kind === "trial") {
-    const { problems } = parseTrial(reading, options, holdAgainstVessel(options));
-    return { kind, network: undefined, problems };
+    const { document, problems } = parseTrial(reading, options, holdAgainstVessel(options));
+    return { kind, network: undefined, ...understood(kind, document), problems };
   }
-  const parse = { chemistry: parseChemistry, duty: parseDuty, study: parseStudy }[kind];
-  return { kind, network: undefined, problems: parse(reading, options).problems };
+  if (kind === "chemistry") {
+    const { document, problems } = parseChemistry(reading, options);
+    return { kind, network: undefined, ...understood(kind, document), problems };
+  }
+  if (kind === "duty") {
+    const { document, problems } = parseDuty(reading, options);
+    return { kind, network: undefined, ...understood(kind, document), problems };
+  }
+  const { document, problems } = parseStudy(reading, options);
+  return { kind, network: undefined, ...understood(kind, document), problems };
+}
+
+function understood<K extends Understood["is"]>(
+  is: K,
+  document: Extract<Understood, { is: K }>["document"] | undefined,
+): { readonly document?: Understood } {
+  // a document belongs to its own sort; the compiler cannot follow that through a union
+  return document === undefined ? {} : { document: { is, document } as unknown as Understood };
 }
 
 /** Does a trial fit the vessel that it names? */

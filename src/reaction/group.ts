@@ -2,7 +2,9 @@ import { Part, type Plant } from "../compile/plant.js";
 import { type BlockMatrix, block, blockMatrix, solveBlocks } from "./block-matrix.js";
 import { bodyAt, hasInside } from "./bodies.js";
 import type { Conditions } from "./conditions.js";
+import type { Disturbed } from "./disturbed.js";
 import type { BlockSystem } from "./newton.js";
+import { responseAt } from "./responses.js";
 
 /** One link that ends inside a group: from node `from` of the group, or from outside it (-1). */
 interface Inlet {
@@ -28,6 +30,8 @@ export interface GroupBalance extends BlockSystem {
   readonly meanTime: number;
   /** True where there is nothing but cells and joints. */
   readonly onlyCells: boolean;
+  /** How small disturbances of a state go on; undefined where a body does not tell. */
+  disturbed(y: Float64Array): Disturbed | undefined;
   /** True where a body solves for what is inside it at every step: dispersion, pockets. */
   readonly slow: boolean;
 }
@@ -96,6 +100,26 @@ export function groupBalance(
     onlyCells: part.every((p) => p === Part.Cell || p === Part.Joint),
     slow: nodes.some((node) => hasInside(plant, node)),
     memory: tau.map((t, k) => (part[k] === Part.Cell ? t : 0)),
+    disturbed(y) {
+      const responses: Disturbed["responses"][number][] = [];
+      for (let k = 0; k < count; k++) {
+        if (!bodies[k]) {
+          responses.push(undefined);
+          continue;
+        }
+        enter(y, k);
+        const response = responseAt(plant, nodes[k], reactionsAt(nodes[k]), mix);
+        if (!response) return undefined;
+        responses.push(response);
+      }
+      const slopes = cells.map((cell, k) => {
+        if (part[k] !== Part.Cell) return undefined;
+        const own = new Float64Array(n * n);
+        cell.jacobian(y, k * n, own, 0);
+        return own.map((x) => x * tau[k]);
+      });
+      return { count, size: n, memory: tau.map((t, k) => (part[k] === Part.Cell ? t : 0)), slopes, responses, inlets };
+    },
     residual(y, f) {
       for (let k = 0; k < count; k++) {
         enter(y, k);

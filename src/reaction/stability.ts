@@ -1,25 +1,27 @@
 import { eigenvalues } from "../numerics/eigenvalues.js";
 import { factor, solve } from "../numerics/lu.js";
 import { blockMatrix } from "./block-matrix.js";
+import { delayedMode } from "./characteristic.js";
 import type { GroupBalance } from "./group.js";
+import type { Mode } from "./mode.js";
 
-/** How a small disturbance of a steady state goes on: 1/s, the fastest of its modes; above zero it grows. */
-export interface Mode {
-  readonly growth: number;
-  /** rad/s of that mode; 0 where it does not swing. */
-  readonly swing: number;
-}
+export type { Mode } from "./mode.js";
 
 const mostComponents = 400;
 
 /**
- * The mode of a group of cells and joints that grows fastest, or fades slowest: eigenvalues of the balances in time, joints
- * eliminated.
- * @returns undefined where the group holds other bodies, is too large, or the eigenvalues could not be had
+ * The mode of a group that grows fastest, or fades slowest. Of cells and joints: eigenvalues of the balances in time, joints
+ * eliminated; with tubes and bodies of parcels: zeros of the determinant of the balances in the Laplace variable.
+ * @param fully with such bodies, find the growth; else only whether it grows
+ * @returns undefined where the group holds other bodies, is too large, or no eigenvalues could be had
  */
-export function slowestMode(balance: GroupBalance, y: Float64Array): Mode | undefined {
+export function slowestMode(balance: GroupBalance, y: Float64Array, fully = true): Mode | undefined {
   const { count, size: n, memory } = balance;
-  if (!balance.onlyCells || count * n > mostComponents) return undefined;
+  if (count * n > mostComponents) return undefined;
+  if (!balance.onlyCells) {
+    const disturbed = balance.disturbed(y);
+    return disturbed && delayedMode(disturbed, fully);
+  }
   const m = blockMatrix(count, n);
   if (!balance.jacobian(y, m)) return undefined;
   const cells: number[] = [];

@@ -64,9 +64,11 @@ export function steadyStates(
     .map(({ walk, growth, reached }): FoundState => {
       const known = growth.filter((m) => m !== undefined);
       const mode = known.reduce<Mode | undefined>((most, m) => (most && most.growth >= m.growth ? most : m), undefined);
+      const rough = known.some((m) => m.rough);
       const judged = known.length === growth.length;
       const stable = mode && mode.growth > 0 ? false : judged ? true : undefined;
-      return { state: summary(plant, conditions, walk), stable, mode, reached };
+      const told = mode && rough ? { ...mode, rough } : mode;
+      return { state: summary(plant, conditions, walk), stable, mode: told, reached };
     });
   return { states, left: [...left] };
 }

@@ -24,6 +24,28 @@ export function passTube(kinetics: Kinetics, tau: number, y: Float64Array, sensi
   return true;
 }
 
+/**
+ * How the composition of a parcel leans on its inlet, after each of several stays.
+ * @param stays ascending, in the unit that `kinetics` counts by
+ * @param inlet scaled
+ * @returns size x size each, row-major; undefined where the integrator gave up
+ */
+export function parcelSlopes(
+  kinetics: Kinetics,
+  stays: ArrayLike<number>,
+  inlet: ArrayLike<number>,
+): Float64Array[] | undefined {
+  const n = kinetics.size;
+  const parcel = new Parcel(kinetics, true);
+  parcel.enter(inlet);
+  const found: Float64Array[] = [];
+  for (let k = 0; k < stays.length; k++) {
+    if (!parcel.stay(stays[k])) return undefined;
+    found.push(parcel.state.slice(n, n + n * n));
+  }
+  return found;
+}
+
 /** What is still to come of a segregated body counts no more below this, scaled. */
 const nothing = 1e-17;
 

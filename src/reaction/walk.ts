@@ -227,7 +227,7 @@ export class Walk {
     return nodes.length > 1 || this.feedsItself(nodes[0]) || this.plant.columns.part[nodes[0]] === Part.Cell;
   }
 
-  /** How a small disturbance of a group goes on, all nodes being in their states; undefined where it was not judged. */
+  /** Whether a small disturbance of a group grows, all nodes being in their states; undefined where it was not judged. */
   modeOf(group: Int32Array): Mode | "settled" | undefined {
     if (!this.decides(group)) {
       const inside = [...group].some((node) => this.inflow[node] > 0 && hasInside(this.plant, node));
@@ -242,7 +242,7 @@ export class Walk {
     for (let p = 0; p < nodes.length; p++) place[nodes[p]] = -1;
     const own = new Float64Array(nodes.length * n);
     for (let p = 0; p < nodes.length; p++) own.set(this.y.subarray(nodes[p] * n, nodes[p] * n + n), p * n);
-    return slowestMode(balance, own);
+    return slowestMode(balance, own, false);
   }
 
   /** A walk that has come as far as this one and goes on by itself. */

@@ -12,7 +12,7 @@ export function cautionsFor(triggers: CautionTriggers): readonly Caution[] {
     about: "Beyond what was tested",
     says: `${what}. The network was not tested there: treat the number as an extrapolation, and test before relying on it.`,
   }));
-  return [...beyond, ...chosen, always];
+  return [...beyond, ...chosen, triggers.untested ? nothingTested : always];
 }
 
 /** Those that are called for, and no more. */
@@ -24,8 +24,13 @@ const always: Caution = {
   says: "The result holds for the flows, levels, temperatures and state of the vessel that were tested. Fouling, gas, season and a changed level change it.",
 };
 
+const nothingTested: Caution = {
+  about: "Nothing tested",
+  says: "The vessel was not tested. A bypass, dead water or a wrong volume or flow shows in none of these figures.",
+};
+
 interface CautionRule extends Caution {
-  readonly when: Exclude<keyof CautionTriggers, "extrapolated">;
+  readonly when: Exclude<keyof CautionTriggers, "extrapolated" | "untested">;
 }
 
 const rules: readonly CautionRule[] = [

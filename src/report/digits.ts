@@ -49,6 +49,10 @@ export const figureLine = (name: string, estimate: Estimate): string =>
     ? "for good (still so when the duty is over)"
     : estimateLine(estimate);
 
+/** "conversion of A, %" as "conversion of A [%]", for use inside a sentence. */
+export const inBrackets = (quantity: string): string =>
+  quantity.replace(/, ([^,]*)$/, (_, unit: string) => (unit === "" ? "" : ` [${unit}]`));
+
 /** A probability without more certainty than there is: 88 %, above 99 %, below 1 %. */
 export function chance(p: number): string {
   if (!Number.isFinite(p)) return "unknown";

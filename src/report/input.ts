@@ -16,9 +16,11 @@ export interface StudyReport {
   /** Analyses of a vessel that had settled, beside what the fit gives there. */
   readonly analyses?: readonly Analysis[];
   readonly data: readonly DataQuality[];
+  /** What bears on the worth of the tests, once for all that it is true of. */
+  readonly dataRemarks?: readonly ReportFinding[];
   readonly findings: readonly ReportFinding[];
-  /** What one might expect but the data do not show. */
-  readonly notSupported: readonly string[];
+  /** What one might expect but the data do not show, each with what was seen, test by test. */
+  readonly notSupported: readonly { readonly what: string; readonly says: readonly string[] }[];
   readonly rivals: readonly Rival[];
   /** "bypass and corner fit equally well": what these data cannot tell apart. */
   readonly equals: readonly string[];
@@ -85,8 +87,19 @@ export interface Identifiability {
   readonly says: readonly string[];
   /** Pairs that move together, most first. */
   readonly correlations: readonly { readonly one: string; readonly other: string; readonly value: number }[];
+  /** What further tests would narrow; left out where none was looked at. */
+  readonly further?: FurtherTests;
   /** Regions of pairs, profiles. */
   readonly figures: readonly Figure[];
+}
+
+/** 95 % intervals of the parameters as they are and after one more test, in the units of the heads. */
+export interface FurtherTests {
+  /** "bypass, %" */
+  readonly heads: readonly string[];
+  readonly now: readonly string[];
+  /** The most telling first; `width` in % of what it is now. */
+  readonly tests: readonly { readonly says: string; readonly width: string; readonly after: readonly string[] }[];
 }
 
 /** A number with its 95 % interval; left out where none was worked out, NaN where the data cannot tell it. All in `unit`. */
@@ -101,8 +114,8 @@ export interface DataQuality {
   readonly trial: string;
   readonly at: string;
   readonly grade: string;
-  /** Reasons of the grade, with their numbers. */
-  readonly because: readonly string[];
+  /** Nothing in the log speaks against it. */
+  readonly clean: boolean;
   /** Recovery, mean, t10 and the like. */
   readonly figures: readonly { readonly name: string; readonly estimate: Estimate }[];
   /** What each cleaning step left. Units in the order area, mean, variance, t10. */
@@ -124,8 +137,10 @@ export interface ReportFinding {
 }
 
 export interface Rival {
-  /** What its curve is called in figures, where names must be short. */
-  readonly short?: string;
+  /** What its curve is called in figures, where names must be short: "A". */
+  readonly letter?: string;
+  /** Its file, without folder. */
+  readonly file?: string;
   readonly network: string;
   readonly freeParameters: number;
   readonly aicc: number;
@@ -210,6 +225,8 @@ export interface CautionTriggers {
   readonly recirculates?: boolean;
   /** A reaction is fast against mixing. */
   readonly fastReaction?: boolean;
+  /** No test stands behind any of it. */
+  readonly untested?: boolean;
   /** Duties beyond what was tested: "feed 15 L/min, tested up to 10 L/min". */
   readonly extrapolated?: readonly string[];
 }

@@ -1,8 +1,12 @@
 import { plotBars } from "../draw/bars.js";
-import { drawIntervals, type IntervalRow, intervalsTable } from "../draw/intervals.js";
-import { chance, figureLine } from "./digits.js";
+import { type IntervalRow, plotIntervals } from "../draw/intervals.js";
+import { columnWidth } from "../draw/picture.js";
+import { chance, figureLine, inBrackets } from "./digits.js";
 import type { Change, Figure, Prediction, StudyReport } from "./input.js";
 import { grouped } from "./sections/rows.js";
+
+/** Beside another on the page. */
+const column = { untitled: true, width: columnWidth };
 
 /** What the vessel makes: a drawing for each quantity, a row for each duty. */
 export const predictionFigures = ({ predictions }: StudyReport): Figure[] =>
@@ -10,11 +14,10 @@ export const predictionFigures = ({ predictions }: StudyReport): Figure[] =>
     const intervals = { title: quantity, quantity, rows: list.flatMap(predictionRow) };
     return {
       name: `prediction-${k + 1}`,
-      drawing: drawIntervals(intervals, { untitled: true }),
-      data: { table: intervalsTable(intervals) },
+      ...plotIntervals(intervals, column),
       caption: list.some((p) => p.bounds)
-        ? `${quantity}: value, 95 % interval, and where full segregation and maximum mixedness would put it.`
-        : `${quantity}: value and 95 % interval.`,
+        ? `${capital(inBrackets(quantity))}: value, 95 % interval, and where full segregation and maximum mixedness would put it.`
+        : `${capital(inBrackets(quantity))}: value and 95 % interval.`,
     };
   });
 
@@ -24,6 +27,8 @@ function predictionRow(p: Prediction): readonly IntervalRow[] {
   const text = figureLine(p.name, p.estimate);
   return [{ label: p.duty, value, low, high, text, ...(p.bounds ? { bounds: p.bounds } : {}) }];
 }
+
+const capital = (words: string): string => words.charAt(0).toUpperCase() + words.slice(1);
 
 const mostSpreads = 2;
 const mostDrivers = 6;
@@ -38,7 +43,7 @@ export function spreadFigures({ predictions }: StudyReport): Figure[] {
     const how = p.spreadMethod === undefined ? "" : ` (${p.spreadMethod})`;
     return {
       name: `spread-${k + 1}`,
-      ...plotBars({ title, quantity: "share of the variance, %", rows }, { untitled: true }),
+      ...plotBars({ title, quantity: "share of the variance, %", rows }, column),
       caption: `${title}${says}${how}.`,
     };
   });
@@ -51,14 +56,22 @@ export const changeFigures = ({ changes }: StudyReport): Figure[] =>
     const intervals = { title: quantity, quantity, rows: list.flatMap(changeRow), reference };
     return {
       name: `change-${k + 1}`,
-      drawing: drawIntervals(intervals, { untitled: true }),
-      data: { table: intervalsTable(intervals) },
-      caption: `After each change, with the chance of being better than today: ${quantity}.`,
+      ...plotIntervals(intervals, column),
+      caption: `${capital(inBrackets(quantity))} after each change, beside today's.`,
     };
   });
 
 function changeRow(c: Change): readonly IntervalRow[] {
   const { value, low, high } = c.estimate;
   if (value === undefined || low === undefined || high === undefined) return [];
-  return [{ label: c.name, value, low, high, text: `better: ${chance(c.probabilityBetter)}` }];
+  return [
+    {
+      label: c.name,
+      value,
+      low,
+      high,
+      text: figureLine(c.name, c.estimate),
+      under: `better than today: ${chance(c.probabilityBetter)}`,
+    },
+  ];
 }

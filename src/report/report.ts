@@ -1,5 +1,5 @@
 import { escapeText } from "../svg/svg.js";
-import { type Html, sharedDrawing } from "./html.js";
+import { type Html, prose, sharedDrawing } from "./html.js";
 import type { AnswerLine, StudyReport } from "./input.js";
 import { reportScript } from "./page/script.js";
 import { reportStyle } from "./page/style.js";
@@ -15,6 +15,7 @@ export function writeReport(report: StudyReport): Html {
     "<!doctype html>",
     `<html lang="en"><head><meta charset="utf-8"><meta name="viewport" content="width=device-width,initial-scale=1">`,
     `<title>${escapeText(report.title)}</title><style>${reportStyle}</style></head><body>`,
+    `<a class="skip" href="#answer">To the answer</a>`,
     sharedDrawing,
     `<header><h1>${escapeText(report.title)}</h1>${contents(body)}</header>`,
     `<main>${answer(report.answer)}`,
@@ -29,9 +30,9 @@ export function writeReport(report: StudyReport): Html {
 function answer(lines: readonly AnswerLine[]): Html {
   const said = lines.map(({ about, says }, k) => {
     const head = about === lines[k - 1]?.about ? "" : `<dt>${escapeText(about)}</dt>`;
-    return `${head}<dd>${escapeText(says)}</dd>`;
+    return `${head}<dd>${prose(says)}</dd>`;
   });
-  return `<section class="answer" aria-label="The answer"><dl>${said.join("")}</dl></section>`;
+  return `<section id="answer" class="answer" tabindex="-1" aria-label="The answer"><dl>${said.join("")}</dl></section>`;
 }
 
 /** Links to the sections that are there. */

@@ -1,4 +1,4 @@
-import { figure, type Html, section } from "./html.js";
+import { figures, type Html, section } from "./html.js";
 import type { StudyReport } from "./input.js";
 import { analysesTable } from "./sections/analyses.js";
 import { aimsSection, sweepsSection } from "./sections/asked.js";
@@ -13,17 +13,16 @@ import { rivalsSection } from "./sections/rivals.js";
 
 /** The parts of a report in reading order, after the answer. One function each; empty where there is nothing to say. */
 export const sections: readonly ((report: StudyReport) => Html)[] = [
-  ({ vessel }) => section("vessel", "The vessel as fitted", vessel ? [figure(vessel)] : []),
+  ({ vessel }) => section("vessel", "The vessel as fitted", vessel ? [figures([vessel])] : []),
   dataSection,
-  ({ curves, analyses }) =>
-    section("curves", "Measured and fitted", [...curves.map(figure), analysesTable(analyses ?? [])]),
+  ({ curves, analyses }) => section("curves", "Measured and fitted", [figures(curves), analysesTable(analyses ?? [])]),
   findingsSection,
   rivalsSection,
   parametersSection,
   identifiabilitySection,
-  ({ residence }) => section("residence", "How long the liquid stays", residence.map(figure)),
+  ({ residence }) => section("residence", "How long the liquid stays", [figures(residence)]),
   predictionsSection,
-  ({ inTime }) => section("in-time", "In time", inTime.map(figure)),
+  ({ inTime }) => section("in-time", "In time", [figures(inTime)]),
   changesSection,
   aimsSection,
   sweepsSection,

@@ -17,7 +17,7 @@ export function resolveStreams(node: Tree | undefined, scope: Scope, report: Rep
       continue;
     }
     // The dimension of the value tells a share from a flow.
-    const amount = resolveValue(value, [dimensions.ratio, dimensions.flow], scope, report);
+    const amount = resolveValue(value, [dimensions.ratio, dimensions.flow], { ...scope, words: ["rest"] }, report);
     if (!amount) {
       streams.push(unknownStream(key.text, key.at));
       continue;

@@ -29,6 +29,8 @@ export interface Scope {
   readonly scale?: (name: string) => Scale | undefined;
   /** The unit that a name's value is written in. */
   readonly unit?: (name: string) => Unit | undefined;
+  /** Words of the language that may stand here in place of a value: a slip of one is told as such. */
+  readonly words?: readonly string[];
   /** What volumes and flows count here; default: volume. */
   readonly basis?: Basis;
   /** What a name is called from outside, where the document is a part of another: `core.tanks` for its own `tanks`. */
@@ -151,7 +153,7 @@ function namesKnown(node: ScalarNode, e: Expression, scope: Scope, report: Repor
     known = false;
     const names = scope.names();
     const at = spanWithin(node, part.at.from, part.at.to);
-    const near = nearest(part.name, names);
+    const near = nearest(part.name, e.type === "name" ? [...names, ...(scope.words ?? [])] : names);
     const unit = symbols.has(part.name);
     report("unknown-name", at, { name: part.name, nearest: near, minus: asMinus(part.name, scope), unit });
   });

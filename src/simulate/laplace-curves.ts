@@ -13,6 +13,8 @@ const trialWork = 1_500_000;
 /** The same where there is no other way. */
 const mostNodes = 400_000;
 const mostWork = 3_000_000;
+/** The same where nothing was taken apart by delay: that one curve is all that is asked. */
+const mostWorkWhole = 24_000_000;
 /** In mean times: what is asked at the very moment of a jump is told by what it is this soon after it; a slope in time, this soon. */
 const soon = 4 ** -50;
 const soonSlope = 4 ** -10;
@@ -148,9 +150,10 @@ export function addParts(
       else ask((1 + moves.length) * channels.length + p, 0, usual(0) / unit, slopesInTime, moveLater);
     }
   });
+  const work = copies.length === 1 ? mostWorkWhole : mostWork;
   const most = behind
     ? Math.max(600, Math.min(trialNodes, trialWork / copies.length))
-    : Math.max(6_000, Math.min(mostNodes, mostWork / (copies.length * plant.nodes.length)));
+    : Math.max(6_000, Math.min(mostNodes, work / (copies.length * plant.nodes.length)));
   const { values, difference, settled } = invert(transforms, wanted, unit, most, behind);
   values.forEach((v, w) => {
     add[w](v);

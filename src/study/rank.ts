@@ -33,5 +33,12 @@ export function standings(fits: readonly (Fit | undefined)[]): Standing[] {
   }));
 }
 
+/** Where nothing was tested every rival counts alike, and nothing is compared. */
+export const untestedStanding = (rivals: number): Standing => ({
+  criterion: Number.POSITIVE_INFINITY,
+  difference: 0,
+  weight: 1 / rivals,
+});
+
 /** A rival that the data leave standing: its weight is above 5 % (Burnham & Anderson average over such; common practice). */
 export const survives = (standing: Standing): boolean => standing.weight > 0.05;

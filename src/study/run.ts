@@ -16,7 +16,7 @@ import { drawsOf, type RivalDraws } from "./draws-of.js";
 import { nestedTests } from "./nested.js";
 import { operationOf } from "./operation.js";
 import { predictDuty } from "./predict.js";
-import { standings, survives } from "./rank.js";
+import { standings, survives, untestedStanding } from "./rank.js";
 import { regulatedOutcome } from "./regulated.js";
 import { residenceOf } from "./residence.js";
 import type { Answered, Ranked, StudyResult } from "./result.js";
@@ -48,26 +48,29 @@ const fewestDraws = 20;
 const mostNested = 6;
 
 /**
- * The whole job: fits every rival to all trials at once, ranks them, predicts every duty for those that survive, and
+ * The whole job: fits every rival to all trials at once (without trials they stand as written), ranks them, predicts every duty for those that survive, and
  * compares the changes. Pure and deterministic for a given study; a cancelled run gives what is known so far.
  */
 export function runStudy(study: Study, options: StudyOptions = {}): StudyResult {
   const cancelled = options.cancelled ?? (() => false);
   const tell = options.progress ?? (() => {});
   const count = Math.max(fewestDraws, options.draws ?? 200);
+  const untested = study.trials.length === 0;
   const tracers = study.trials.filter((trial) => !trial.reacting);
   const readings = tracers.map((trial) => ({ trial, moments: readMoments(trial, momentsFacts(study, trial)) }));
   const fitted = study.rivals.map((rival, i): Omit<Ranked, "standing" | "survives"> => {
     tell({ stage: "fitting", what: rival.network.title, done: (0.8 * i) / study.rivals.length });
-    return fitRival(study, rival, options, cancelled);
+    return untested ? asWritten(rival) : fitRival(study, rival, options, cancelled);
   });
-  const standing = standings(fitted.map((f) => f.fit));
+  const standing = untested ? fitted.map(() => untestedStanding(fitted.length)) : standings(fitted.map((f) => f.fit));
   const ranked = fitted
     .map(
       (f, i): Ranked => ({
         ...f,
         standing: standing[i],
-        survives: f.fit !== undefined && survives(standing[i]) && !explainsNothing(f.fit),
+        survives: untested
+          ? f.plant !== undefined
+          : f.fit !== undefined && survives(standing[i]) && !explainsNothing(f.fit),
       }),
     )
     .sort((a, b) => a.standing.difference - b.standing.difference);
@@ -114,7 +117,8 @@ export function runStudy(study: Study, options: StudyOptions = {}): StudyResult 
     [...(samples.get(r.rival)?.values() ?? [])].flatMap((sample) => (cancelled() ? [] : regulatedOutcome(r, sample))),
   );
   const best = alive[0];
-  const sameCurvesOfBest = best?.plant && !cancelled() ? sameCurves(best.plant, options.library ?? []) : [];
+  const sameCurvesOfBest =
+    best?.plant && !untested && !cancelled() ? sameCurves(best.plant, options.library ?? []) : [];
   const further = best?.fit && !cancelled() ? furtherTests(best.rival.network, study.trials, best.fit) : [];
   const vessel = study.rivals[0]?.network;
   return {
@@ -135,8 +139,14 @@ export function runStudy(study: Study, options: StudyOptions = {}): StudyResult 
     residence: best?.plant && !cancelled() ? residenceOf(best.plant, draws.get(best.rival)?.settings ?? []) : undefined,
     draws: Math.min(count, ...[...draws.values()].map((d) => d.settings.length)),
     stopped: cancelled() ? "cancelled" : undefined,
-    converged: ranking.every((r) => r.fit?.converged ?? false),
+    converged: ranking.every((r) => (untested ? r.plant !== undefined : (r.fit?.converged ?? false))),
   };
+}
+
+/** Without a trial a network counts as it is written. */
+function asWritten(rival: Rival): Omit<Ranked, "standing" | "survives"> {
+  const { plant, problems } = compile(rival.network);
+  return { rival, fit: undefined, problems, plant };
 }
 
 /** Profiles of the best rival's parameters: the same fit once more, since nothing else of it is asked of the others. */

@@ -8,8 +8,8 @@ import { faintWords } from "./contrast.js";
 
 /** Sheets of paper less the margins of the page's style, px at 96 per inch. */
 const sheets = {
-  A4: { width: ((210 - 30) / 25.4) * 96, height: ((297 - 32) / 25.4) * 96 },
-  Letter: { width: ((215.9 - 30) / 25.4) * 96, height: ((279.4 - 32) / 25.4) * 96 },
+  A4: { width: ((210 - 28) / 25.4) * 96, height: ((297 - 28) / 25.4) * 96 },
+  Letter: { width: ((215.9 - 28) / 25.4) * 96, height: ((279.4 - 28) / 25.4) * 96 },
 } as const;
 
 describeInBrowser("the report in a browser", ({ open }) => {
@@ -57,6 +57,12 @@ describeInBrowser("the report in a browser", ({ open }) => {
     expect(pdf.subarray(0, 5).toString()).toBe("%PDF-");
     expect(pdf.toString("latin1")).toMatch(/\/Type\s*\/Page\b/);
     await page.emulateMedia({ media: "print" });
+    // As the page lays it out on paper, words in drawings of a column's width are set in 7 points or more.
+    const points = await page.evaluate<number[]>(
+      `[...document.querySelectorAll("figure:not(.wide) svg")].map((s) => (s.getBoundingClientRect().width / s.viewBox.baseVal.width) * 11 * 0.75)`,
+    );
+    expect(points.length).toBeGreaterThan(3);
+    expect(Math.min(...points)).toBeGreaterThan(7);
     const boxes = await page.evaluate<{ left: number; right: number; height: number; breaks: string }[]>(
       `[...document.querySelectorAll("figure")].map((f) => { const { left, right } = f.querySelector("svg").getBoundingClientRect(); return { left, right, height: f.getBoundingClientRect().height, breaks: getComputedStyle(f).breakInside }; })`,
     );
@@ -81,6 +87,12 @@ describeInBrowser("the report in a browser", ({ open }) => {
     await page.emulateMedia({ media: "print" });
     const box = await page.locator(".answer").boundingBox();
     expect((box?.y ?? 0) + (box?.height ?? 0)).toBeLessThan(sheets.A4.height / 2);
+    const size = await page.evaluate<string>(`getComputedStyle(document.querySelector(".answer dd")).fontSize`);
+    expect(Number.parseFloat(size) * 0.75).toBeLessThan(10.5);
+    // Nothing sends it to the second sheet: less than a sheet of it is one sheet of paper.
+    await page.evaluate(`document.querySelectorAll("main > section:not(#answer), footer").forEach((e) => e.remove())`);
+    const pdf = (await page.pdf({ format: "A4" })).toString("latin1");
+    expect(pdf.match(/\/Type\s*\/Page\b/g)?.length).toBe(1);
   });
 
   const fit = "#figure-fit-1";

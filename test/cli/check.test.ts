@@ -44,6 +44,63 @@ describe("check", () => {
     expect(at(network, "vessel.feed.unit")).toBe("L/min");
   });
 
+  test("prints what it understood of a trial, a duty, a chemistry, a study and a change", async () => {
+    const names = ["demo/salt-normal", "heat/cooled", "heat/exothermic", "demo/second-tank", "flask/flask-20"];
+    const { status, out } = await backmix(["check", ...names.map((name) => `networks/${name}.yaml`)]);
+    expect(status).toBe(0);
+    expect(out).toMatchInlineSnapshot(`
+      "networks/demo/salt-normal.yaml: trial, ok
+
+        vessel     both.yaml
+        flow       feed 40 L/min ± 1 %
+        injection  pulse of 3 kg ± 1 % at feed, from 09:14:20 over 2 min
+        clock      times of day, written h:m:s
+
+        reading  file             rows  times                 unit          cleaning
+        product  salt-normal.csv   781  09:00:00 to 15:30:00  mS/cm -> g/L  drifting baseline, delay 0.5 min, lag 0.2 min, 11 left out
+
+      networks/heat/cooled.yaml: duty, ok
+
+        chemistry    First order, exothermic
+        fed by feed  A 3 mol/L, at 25 degC
+        heat         tank has a jacket at 20 degC, 400 W/K; all else adiabatic
+        reported     conversion of A; temperature at product
+
+      networks/heat/exothermic.yaml: chemistry, ok
+
+        species        A, P
+        constant       k = 0.0006 1/min, follows T
+        heat capacity  4 kJ/L/K
+        temperature    asked for by the rates
+
+        reaction  makes of each  heat
+        A -> P    A −1, P +1     -120 kJ/mol
+
+      networks/demo/second-tank.yaml: change, ok
+
+        changes  feeds, compartments
+
+      networks/flask/flask-20.yaml: trial, ok
+
+        vessel       flask.yaml
+        chemistry    Hydrolysis of the ester, to be measured
+        temperature  20 degC ± 0.2 K
+        flask holds  ester 0.05 mol/L ± 0.5 %, base 0.06 mol/L ± 0.5 %
+        clock        elapsed, in min
+
+        reading        file          rows  times            unit   cleaning
+        base at flask  flask-20.csv    14  0 min to 26 min  mol/L
+      "
+    `);
+  });
+
+  test("of a closed vessel without streams there is no empty table", async () => {
+    const flask = "network: Flask\nformat: 1\ncompartments: {flask: {kind: stirred, volume: 1 L}}\n";
+    const { out } = await backmix(["check", "flask.yaml"], { files: { "flask.yaml": flask } });
+    expect(out).not.toContain("stream");
+    expect(out).toContain("nothing enters or leaves");
+  });
+
   test("looks at every file, also after a broken one", async () => {
     const { status, document } = await json(["check", "broken.yaml", "tank.yaml", "nowhere.yaml"], { files });
     expect(status).toBe(1);

@@ -189,3 +189,18 @@ describe("mean ages", () => {
     expect(other.err).toContain("ends in .csv");
   });
 });
+
+test("curves are written as the ending of the file asks: CSV, or a figure with its axis and its spikes", async () => {
+  const base = ["simulate", "networks/demo/bypass.yaml"];
+  const pulse = await backmix([...base, "--pulse", "feed", "-o", "e.svg"]);
+  expect(pulse.status).toBe(0);
+  expect(pulse.written.get("e.svg")).toContain("E, exit age (c·Q / amount), 1/min");
+  expect(pulse.written.get("e.svg")).toContain("5\u2009% at 0");
+  const step = await backmix([...base, "--step", "feed", "-o", "f.SVG"]);
+  expect(step.written.get("f.SVG")).toContain("F, share of what leaves that came in since");
+  const trial = await backmix([...base, "--trial", "networks/demo/salt-normal.yaml", "-o", "t.png"]);
+  expect(trial.written.get("t.png")?.slice(1, 4)).toBe("PNG");
+  const wrong = await backmix([...base, "--pulse", "feed", "-o", "e.pdf"]);
+  expect(wrong.status).toBe(2);
+  expect(wrong.err).toContain("CSV, SVG or PNG");
+});

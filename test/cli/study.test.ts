@@ -138,7 +138,7 @@ aims:
     expect(out).toContain("conversion of A = 50 % at feed.flow = ");
     expect(out).toContain("Infeasible: no feed.flow from 1 L/min to 20 L/min gives conversion of A ≥ 99 %");
     expect(written.get("made/report.html")).toContain('<section id="aims"><h2>What it takes</h2>');
-    expect(written.get("made/report.html")).toContain('id="figure-sweep-1"');
+    expect(written.get("made/report.html")).toContain('id="figure-sweep-1-1"');
     // The trial was made at 10 L/min: 8 L/min, and a sweep from 5 to 20, are not what it tells of.
     expect(out.replace(/\s+/g, " ")).toContain("Beyond the trials, which were made at 10 L/min only: extrapolated.");
     const page = (written.get("made/report.html") ?? "").replace(/\u00a0/g, " ");

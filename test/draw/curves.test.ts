@@ -5,7 +5,8 @@ import { overlaps } from "../../src/draw/clutter.js";
 import { drawCurves } from "../../src/draw/curves.js";
 import { drawFit } from "../../src/draw/fit-curve.js";
 import { separated } from "../../src/draw/heights.js";
-import { drawIntervals } from "../../src/draw/intervals.js";
+import { plotIntervals } from "../../src/draw/intervals.js";
+import { columnWidth } from "../../src/draw/picture.js";
 import { textWidth } from "../../src/svg/measure.js";
 import type { Box } from "../../src/svg/svg.js";
 
@@ -133,17 +134,25 @@ describe("lines with names at their ends", () => {
 
 test("intervals with bounds: words stay apart and inside", () => {
   const row = { value: 82.3, low: 80.1, high: 84.2, text: "82.3 % (80.1 to 84.2)" };
-  const svg = drawIntervals({
+  const of = {
     title: "Conversion",
     quantity: "conversion, %",
     rows: [
-      { ...row, label: "normal", bounds: { segregated: 82.4, maximumMixedness: 82.3 } },
+      {
+        ...row,
+        label: "normal",
+        under: "better than today: 88 %",
+        bounds: { segregated: 82.4, maximumMixedness: 82.3 },
+      },
       { ...row, label: "a duty of a rather long name", bounds: { segregated: 95, maximumMixedness: 80 } },
     ],
     reference: { value: 97, label: "required" },
-  });
-  expect(collisions(svg)).toEqual([]);
-  expect(outside(svg)).toEqual([]);
+  };
+  for (const width of [columnWidth, 640]) {
+    const { drawing } = plotIntervals(of, { width });
+    expect(collisions(drawing)).toEqual([]);
+    expect(outside(drawing)).toEqual([]);
+  }
 });
 
 describe("axes", () => {

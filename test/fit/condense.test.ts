@@ -1,5 +1,6 @@
 import { expect, test } from "vitest";
-import { condense } from "../../src/fit/condense.js";
+import { condense, stillStands } from "../../src/fit/condense.js";
+import { estimatesOf } from "../../src/fit/estimates.js";
 import { networkModel } from "../../src/fit/network-model.js";
 import { prepare } from "../../src/fit/prepare.js";
 import { problemWith } from "../../src/fit/problem.js";
@@ -58,6 +59,26 @@ test("few points that stand for many rise as they do, and end where they end", (
   const byFew = descend(close, truth, fully, unwatched);
   expect(all.converged && byFew.converged).toBe(true);
   for (const [j, u] of all.x.entries()) expect(Math.abs(byFew.x[j] - u)).toBeLessThan(1e-9);
+});
+
+test("errors from few points are those of all, and where fronts have moved too far they stand for nothing", () => {
+  if (!close) throw new Error("not condensed");
+  const { x } = descend(close, truth, fully, unwatched);
+  const at = problem.evaluate(x);
+  if (!at) throw new Error("no vessel");
+  expect(stillStands(close, problem, x)).toBe(at);
+  const settled = { problem, weights: weightsFor(setup), x, at, converged: true };
+  const [all, few] = [estimatesOf(settled), estimatesOf(settled, close)];
+  expect(few.variance).toBe(all.variance);
+  for (const [j, p] of all.parameters.entries()) {
+    const relative = (few.parameters[j].standardError ?? Number.NaN) / (p.standardError ?? Number.NaN) - 1;
+    expect(Math.abs(relative)).toBeLessThan(1e-6);
+  }
+  for (const [j, row] of all.correlation.rows.entries())
+    for (const [k, r] of row.entries()) expect(few.correlation.rows[j][k]).toBeCloseTo(r, 6);
+  const riser = setup.coordinates.findIndex((c) => c.name === "riser");
+  const far = Float64Array.from(x, (u, j) => (j === riser ? u + 0.1 : u));
+  expect(stillStands(close, problem, far)).toBeUndefined();
 });
 
 test("what stands for censored readings, or saves little, is not made", () => {

@@ -152,7 +152,7 @@ test("few readings of plain noise seldom seem to hang together, those of slow er
           r[i] -= share * q[i];
         });
       }
-      if (autocorrelationOf(blocks, r, basis).significant) count++;
+      if (autocorrelationOf(blocks, r, { count: basis.length, columns: () => basis }).significant) count++;
     }
     return count;
   };

@@ -30,7 +30,7 @@ describe("the demo study", () => {
   test("keeps every figure of the page as a drawing of its own", () => {
     const wanted =
       "vessel fit-1 residuals-1 fit-2 residuals-2 rivals-1 rivals-2 profiles regions exit-age left-and-inside intensity " +
-      "prediction-1 prediction-2 prediction-3 spread-1 spread-2 along-1 change-1 change-2 change-3 sweep-1";
+      "prediction-1 prediction-2 prediction-3 spread-1 spread-2 along-1 change-1 change-2 change-3 sweep-1-1 sweep-1-2 sweep-1-3";
     expect(run.figures).toEqual(wanted.split(" "));
     expect([...run.page.matchAll(/<figure [^>]*data-name="([^"]+)"/g)].map((m) => m[1])).toEqual(run.figures);
   });

@@ -65,7 +65,10 @@ describe.each(Object.entries(chemistries))("%s", (_, text) => {
     loops.concentrations.forEach((c, i) => {
       expect(Math.abs(c - calls.concentrations[i])).toBeLessThan(1e-9 * 1000);
     });
-    for (const c of loops.closure) expect(Math.abs(c)).toBeLessThan(1e-10);
+    const { fed, made, left } = loops;
+    fed.forEach((f, i) => {
+      expect(Math.abs(f + made[i] - left[i])).toBeLessThan(1e-12 * fed[0]);
+    });
   });
 
   test("they are used here, and not where laws are only called", () => {

@@ -1,6 +1,7 @@
 import { plotCurves } from "../../src/draw/curves.js";
 import { plotFit } from "../../src/draw/fit-curve.js";
 import { drawNetwork } from "../../src/draw/network.js";
+import { columnWidth } from "../../src/draw/picture.js";
 import { plotRegions } from "../../src/draw/regions.js";
 import { plotResiduals } from "../../src/draw/residuals.js";
 import { sheetTable } from "../../src/draw/sheet-table.js";
@@ -12,6 +13,9 @@ const time = Array.from({ length: 90 }, (_, k) => k * 4);
 const curve = (tau: number): number[] => time.map((t) => (t < 15 ? 0 : 0.05 * Math.exp(-(t - 15) / tau)));
 const wiggle = time.map((_, k) => 0.0012 * Math.sin(k * k));
 const fitted = curve(76);
+
+/** As the study draws what stands beside another. */
+const column = { untitled: true, width: columnWidth };
 
 export const demo: StudyReport = {
   title: "Why does V-3 convert less than designed?",
@@ -58,7 +62,7 @@ export const demo: StudyReport = {
             },
           ],
         },
-        { untitled: true },
+        column,
       ),
       caption: "Measured points, the fitted line, and what is left between them.",
     },
@@ -77,7 +81,7 @@ export const demo: StudyReport = {
             },
           ],
         },
-        { untitled: true },
+        column,
       ),
       caption: "Weighted residuals and their autocorrelation.",
     },
@@ -87,7 +91,7 @@ export const demo: StudyReport = {
       trial: "Salt pulse, normal flow",
       at: "product",
       grade: "B",
-      because: ["recovery 96 % (92 to 100 %)", "6 % of the area is extrapolated tail"],
+      clean: false,
       figures: [
         { name: "recovery", estimate: { value: 96.2, unit: "%", low: 92.3, high: 100.1 } },
         { name: "mean", estimate: { value: 95.4, unit: "min", low: 91, high: 99.8 } },
@@ -110,7 +114,17 @@ export const demo: StudyReport = {
       next: "repeat with a diluted slug; sample a second depth",
     },
   ],
-  notSupported: ["dead volume: the mean is within 5 % of volume over flow, and the flow is known to 2 %"],
+  dataRemarks: [
+    {
+      message: "a large part of the figures comes from the extrapolated tail",
+      evidence: "extrapolated: 6 % of the area, 11 % of the mean",
+      couldBe: "a test stopped too early",
+      next: "measure longer",
+    },
+  ],
+  notSupported: [
+    { what: "dead volume", says: ["the mean is within 5 % of volume over flow, and the flow is known to 2 %"] },
+  ],
   rivals: [
     { network: "bypass and corner", freeParameters: 4, aicc: -812.4, weight: 0.93, verdict: "leads" },
     { network: "bypass", freeParameters: 2, aicc: -807.2, weight: 0.07, verdict: "misses the tail after 200 min" },
@@ -131,7 +145,7 @@ export const demo: StudyReport = {
           ],
           points: { x: time, y: fitted.map((v, k) => v + wiggle[k]), label: "measured" },
         },
-        { untitled: true, log: true },
+        { ...column, log: true },
       ),
       caption: "Rivals over the same points, the best in full tone.",
     },
@@ -164,7 +178,7 @@ export const demo: StudyReport = {
               },
             ],
           },
-          { untitled: true },
+          column,
         ),
         caption: "Inside the ellipse lies 95 % of what is possible.",
       },
@@ -175,7 +189,7 @@ export const demo: StudyReport = {
       name: "exit-age",
       ...plotCurves(
         { title: "Exit ages", x: "time, min", y: "E, 1/min", lines: [{ label: "E", x: time, y: fitted }] },
-        { untitled: true },
+        column,
       ),
       caption: "Ages of what leaves.",
     },
@@ -245,7 +259,7 @@ export const demo: StudyReport = {
             },
           ],
         },
-        { untitled: true },
+        column,
       ),
       caption: "Normal production over feed.flow; the band holds 95 % of what is possible.",
     },

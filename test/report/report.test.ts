@@ -18,6 +18,7 @@ describe("the report page", () => {
 
   test("reads in the agreed order", () => {
     const order = [
+      "answer",
       "vessel",
       "data",
       "curves",
@@ -81,6 +82,7 @@ describe("the report page", () => {
   test("leaves out what there is nothing to say about", () => {
     const bare = writeReport(nothing);
     expect([...bare.matchAll(/<section id="([^"]+)"/g)].map((m) => m[1])).toEqual([
+      "answer",
       "findings",
       "cautions",
       "provenance",

@@ -10,6 +10,7 @@ export function branchesJson(plot: BranchPlot, next: ReturnType<typeof nextTurns
   const turnJson = (turn: Turn) => ({
     at: quantity(turn.at, input.unit),
     what: turn.what,
+    ...(turn.of === undefined ? {} : { of: turn.of }),
     as: turn.as,
     report: figuresAt({ at: turn.at, state: turn.state, stable: undefined }).map((f) => ({
       name: f.name,

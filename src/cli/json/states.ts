@@ -31,7 +31,9 @@ export function statesJson(plant: Plant, duty: Duty, { states, left }: StatesFou
       });
       return {
         stable: stable ?? null,
-        ...(mode ? { growth: quantity(mode.growth, perTime), swing: quantity(mode.swing, perTime) } : {}),
+        ...(mode && !mode.rough
+          ? { growth: quantity(mode.growth, perTime), swing: quantity(mode.swing, perTime) }
+          : {}),
         fromFeed: reached,
         outlets: Object.fromEntries(
           state.outlets.map((o) => [o.name, mixture(state.species, o.concentrations, o.temperature)]),

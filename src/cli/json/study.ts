@@ -68,7 +68,9 @@ function rankedJson({ rival, fit, standing, survives, problems }: Ranked): objec
   const head = { network: rival.path, title: rival.network.title };
   if (!fit) {
     const why = problems.map((p) => p.message);
-    return { ...head, aicc: null, why: "not-estimable", weight: 0, survives: false, fit: null, because: why };
+    // Without trials a network counts as it is written.
+    const weight = survives ? standing.weight : 0;
+    return { ...head, aicc: null, why: "not-estimable", weight, survives, fit: null, because: why };
   }
   return {
     ...head,

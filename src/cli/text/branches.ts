@@ -59,4 +59,4 @@ export function branchesText(
 }
 
 /** "ignites as it rises". */
-export const wordsOf = ({ what, as }: Turn): string => `${turnWords(what)} as it ${as}`;
+export const wordsOf = (turn: Turn): string => `${turnWords(turn)} as it ${turn.as}`;

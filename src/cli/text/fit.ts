@@ -20,7 +20,7 @@ export function fitText(title: string, fit: Fit, refits?: Bootstrap): string {
     nuisanceTable(fit),
     correlationTable(fit),
     [
-      `  residual sum of squares ${formatNumber(fit.residualSumOfSquares, 6)}${unit} over ${observations} points, ${freeParameters} unknowns`,
+      `  residual sum of squares ${formatNumber(fit.residualSumOfSquares, 6)}${unit} over ${observations} points, ${freeParameters} ${freeParameters === 1 ? "unknown" : "unknowns"}`,
       `  AICc ${formatNumber(fit.aicc, 6)}, BIC ${formatNumber(fit.bic, 6)}, ${evaluations} evaluations`,
       `  ${lackOfFitText(fit)}`,
     ].join("\n"),

@@ -38,7 +38,7 @@ export function networkText(plant: Plant): string {
   const vessel = vesselOf(plant);
   const dead = vessel.dead > 0 ? `, ${formatQuantity(vessel.dead, volume)} of it dead` : "";
   return blocks(
-    streams,
+    plant.streams.length > 0 ? streams : "",
     table(
       [
         { title: "body" },

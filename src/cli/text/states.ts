@@ -51,6 +51,7 @@ const heatCaution = cautionsFor({ heat: true }).find((c) => c.about === "Heat")?
 /** What a small disturbance does, with how fast. */
 function stabilityOf({ stable, mode }: FoundState, plant: Plant): string {
   if (stable === undefined || !mode) return "";
+  if (mode.rough) return stable ? "stable" : "unstable";
   const minutes: Unit = plant.network.units.time;
   const time = formatQuantity(Math.abs(1 / mode.growth), minutes, 2);
   const swings = mode.swing > 0 ? ", swinging" : "";

@@ -7,6 +7,7 @@ import { reportAims } from "../../report/study/asked.js";
 import { decisionWords } from "../../report/study/decision-words.js";
 import { regulatedCaution, regulatedLines } from "../../report/study/regulated-words.js";
 import { studyStatesWords } from "../../report/study/states-words.js";
+import { isUntested } from "../../report/study/untested.js";
 import type { StudyResult } from "../../study/result.js";
 import { formatNumber, formatQuantity } from "../../units/format.js";
 import { inUnit, type Unit } from "../../units/unit.js";
@@ -20,7 +21,9 @@ export function studyText(result: StudyResult, answer: readonly AnswerLine[], re
       ? ""
       : result.ranking.some((r) => r.fit && !r.fit.converged)
         ? " (a fit did not converge)"
-        : " (a network was not fitted)";
+        : isUntested(result)
+          ? " (a network does not balance)"
+          : " (a network was not fitted)";
   return blocks(
     `${result.study.title}${marked}`,
     answerText(answer),
@@ -50,7 +53,17 @@ function answerText(answer: readonly AnswerLine[]): string {
 
 const right = (title: string) => ({ title, align: "right" as const });
 
-function rankingTable({ ranking }: StudyResult): string {
+function rankingTable(result: StudyResult): string {
+  const { ranking } = result;
+  if (isUntested(result)) {
+    return table(
+      [{ title: "network" }, { title: "" }],
+      ranking.map(({ rival, plant, problems }) => [
+        rival.network.title,
+        plant ? "as it is written, no test" : `cannot be: ${problems[0]?.message ?? "it does not balance"}`,
+      ]),
+    );
+  }
   return table(
     [{ title: "rival" }, right("AICc above the best"), right("weight"), { title: "" }],
     ranking.map(({ rival, fit, standing, survives, problems }) => [

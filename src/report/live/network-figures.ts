@@ -47,7 +47,7 @@ function pulse(plant: Plant): Figure[] {
         {
           title: `A pulse into '${feed}'`,
           x: `time, ${time.name}`,
-          y: `c Q / amount, 1/${time.name}`,
+          y: `E, exit age (c\u00b7Q / amount), 1/${time.name}`,
           lines: result.readings.map((r) => ({
             label: r.at,
             x,

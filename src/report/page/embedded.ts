@@ -1,4 +1,5 @@
 import { columnsOf, type FigureData, type PlotData } from "../../draw/plotted.js";
+import type { Box } from "../../svg/svg.js";
 
 /** What a page knows of a figure: its numbers once each, and which of them are axes, curves and columns of the saved table. */
 export interface Embedded {
@@ -10,6 +11,8 @@ export interface Embedded {
   readonly head: readonly string[];
   readonly columns?: readonly number[];
   readonly rows?: readonly (readonly (string | number | null)[])[];
+  /** Where rows stand in the drawing: left, top, width, height. */
+  readonly boxes?: readonly (readonly number[])[];
 }
 
 /** Indices point into `numbers`. */
@@ -27,7 +30,8 @@ const digits = 7;
 export function embedded(name: string, data: FigureData): Embedded {
   if ("table" in data) {
     const rows = data.table.rows.map((row) => row.map((cell) => (typeof cell === "number" ? short(cell) : cell)));
-    return { name, numbers: [], plots: [], head: data.table.head, rows };
+    const boxes = data.table.boxes?.map(corners);
+    return { name, numbers: [], plots: [], head: data.table.head, rows, ...(boxes ? { boxes } : {}) };
   }
   const pool = new Map<ArrayLike<number>, number>();
   const numbers: (number | null)[][] = [];
@@ -40,7 +44,7 @@ export function embedded(name: string, data: FigureData): Embedded {
   const plots = data.plots.map(
     (p): EmbeddedPlot => ({
       label: p.label,
-      box: [p.box.x, p.box.y, p.box.width, p.box.height].map((v) => Math.round(v * 100) / 100),
+      box: corners(p.box),
       x: p.x,
       y: p.y,
       series: p.series.filter((s) => !s.hidden).map((s) => ({ label: s.label, x: indexOf(s.x), y: indexOf(s.y) })),
@@ -49,6 +53,8 @@ export function embedded(name: string, data: FigureData): Embedded {
   const { head, columns } = columnsOf(data);
   return { name, plots, head, columns: columns.map(indexOf), numbers };
 }
+
+const corners = ({ x, y, width, height }: Box): number[] => [x, y, width, height].map((v) => Math.round(v * 100) / 100);
 
 /** JSON that cannot end the element that it stands in. */
 export const embeddedJson = (e: Embedded): string => JSON.stringify(e).replace(/</g, "\\u003c");

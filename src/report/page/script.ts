@@ -29,6 +29,7 @@ function equip(figure) {
   if (data) tools.append(button("Save data as CSV", () => save(name + ".csv", "text/csv", csv(data))));
   figure.append(tools);
   if (data && data.plots.length > 0) readable(tools, holder, data);
+  else if (data && data.boxes) listed(tools, holder, data);
 }
 
 function button(words, act) {
@@ -77,8 +78,8 @@ function table(columns) {
   return Array.from({ length }, (_, k) => columns.map((c) => c[k]));
 }
 
-/** Lets pointer and arrow keys walk along the curves of a figure. */
-function readable(tools, holder, data) {
+/** What reads a drawing out: a place for marks in it, a place for words below it, and a name for the keyboard. */
+function reader(tools, holder) {
   const svg = holder.querySelector("svg");
   const mark = document.createElementNS(svgName, "g");
   mark.setAttribute("class", "readout");
@@ -93,6 +94,51 @@ function readable(tools, holder, data) {
   holder.tabIndex = 0;
   holder.setAttribute("role", "group");
   holder.setAttribute("aria-label", (svg.querySelector("title").textContent || "Curve") + ": arrow keys read the values");
+  return { svg, mark, told, rest };
+}
+
+/** Where the pointer is, in the px of a drawing. */
+function spotIn(svg, e) {
+  const matrix = svg.getScreenCTM();
+  return matrix ? new DOMPoint(e.clientX, e.clientY).matrixTransform(matrix.inverse()) : undefined;
+}
+
+/** Lets pointer and arrow keys walk along the rows of a figure. */
+function listed(tools, holder, data) {
+  const { svg, mark, told, rest } = reader(tools, holder);
+  let at = -1;
+  const show = (row) => {
+    at = Math.min(data.boxes.length - 1, Math.max(0, row));
+    const [x, y, width, height] = data.boxes[at];
+    mark.replaceChildren(shape("path", { d: "M" + (x - 6) + " " + y + "v" + height, class: "curve" }));
+    const [name, ...values] = data.rows[at];
+    told.textContent = name + ": " + values.map((v, k) => data.head[k + 1] + " " + (typeof v === "number" ? say(v) : v)).join("; ");
+  };
+  const clear = () => {
+    mark.replaceChildren();
+    told.textContent = rest;
+    at = -1;
+  };
+  holder.addEventListener("pointermove", (e) => {
+    const spot = spotIn(svg, e);
+    const row = spot ? data.boxes.findIndex(([, y, , height]) => spot.y >= y && spot.y < y + height) : -1;
+    if (row < 0) clear();
+    else show(row);
+  });
+  holder.addEventListener("pointerleave", clear);
+  holder.addEventListener("blur", clear);
+  holder.addEventListener("keydown", (e) => {
+    const to = { ArrowDown: at + 1, ArrowRight: at + 1, ArrowUp: at - 1, ArrowLeft: at - 1, Home: 0, End: data.boxes.length - 1 }[e.key];
+    if (to !== undefined) show(to);
+    else if (e.key === "Escape") clear();
+    else return;
+    e.preventDefault();
+  });
+}
+
+/** Lets pointer and arrow keys walk along the curves of a figure. */
+function readable(tools, holder, data) {
+  const { svg, mark, told, rest } = reader(tools, holder);
   let at = { plot: 0, point: -1 };
 
   const show = (plot, point) => {
@@ -124,9 +170,8 @@ function readable(tools, holder, data) {
   };
 
   holder.addEventListener("pointermove", (e) => {
-    const matrix = svg.getScreenCTM();
-    if (!matrix) return;
-    const spot = new DOMPoint(e.clientX, e.clientY).matrixTransform(matrix.inverse());
+    const spot = spotIn(svg, e);
+    if (!spot) return;
     const plot = data.plots.findIndex((p) => spot.x >= p.box[0] - 4 && spot.x <= p.box[0] + p.box[2] + 4 && spot.y >= p.box[1] - 10 && spot.y <= p.box[1] + p.box[3] + 90);
     if (plot < 0) return clear();
     const p = data.plots[plot];
@@ -181,6 +226,22 @@ function shape(kind, attributes) {
   return made;
 }
 
+/** What scrolls sideways can be reached by the keyboard, and says what it is. */
+function reachable() {
+  for (const box of document.querySelectorAll(".scroll")) {
+    const wide = box.scrollWidth > box.clientWidth + 1;
+    if (!wide) {
+      box.removeAttribute("tabindex");
+      continue;
+    }
+    box.tabIndex = 0;
+    box.setAttribute("role", "region");
+    box.setAttribute("aria-label", (box.querySelector("caption") || box).textContent + ": scrolls sideways");
+  }
+}
+
 window.readFigures(document);
+reachable();
+window.addEventListener("resize", reachable);
 })();
 `.trim();

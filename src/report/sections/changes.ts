@@ -1,5 +1,5 @@
 import { chance } from "../digits.js";
-import { figure, type Html, list, section, table } from "../html.js";
+import { figures, type Html, list, section, table } from "../html.js";
 import type { StudyReport } from "../input.js";
 import { changeFigures } from "../interval-figures.js";
 import { estimateRow, withUnit } from "./rows.js";
@@ -23,7 +23,7 @@ export function changesSection(report: StudyReport): Html {
     { head: "chance of being better", number: true },
   ];
   return section("changes", "Changes compared", [
-    ...changeFigures(report).map(figure),
+    figures(changeFigures(report)),
     table("Changes", columns, rows),
     list(decisions),
   ]);

@@ -1,6 +1,6 @@
 import { escapeText } from "../../svg/svg.js";
 import { cautionsFor } from "../cautions.js";
-import { type Html, list, paragraph, section, terms } from "../html.js";
+import { type Html, list, paragraph, section, table, terms } from "../html.js";
 import type { StudyReport } from "../input.js";
 
 /** What was tested and what is taken for granted. */
@@ -18,12 +18,13 @@ export function cautionsSection({ cautions }: StudyReport): Html {
 
 /** Files with their hashes, seed, version, command: what makes the same numbers again. */
 export function provenanceSection({ provenance: p }: StudyReport): Html {
-  const files = p.files.map(
-    (f) => `<li><code>${escapeText(f.path)}</code><br><code class="quiet">sha256 ${escapeText(f.sha256)}</code></li>`,
-  );
   return section("provenance", "Where it comes from", [
     `<p><code>${escapeText(p.command)}</code></p>`,
     paragraph(`backmix ${p.version}, seed ${p.seed}. The same files, seed and version give the same numbers.`),
-    files.length > 0 ? `<ul>${files.join("")}</ul>` : "",
+    table(
+      "Files that were read",
+      [{ head: "file" }, { head: "SHA-256" }],
+      p.files.map((f) => [{ code: f.path }, { code: f.sha256 }]),
+    ),
   ]);
 }

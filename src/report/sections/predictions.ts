@@ -1,40 +1,44 @@
 import { formatNumber } from "../../units/format.js";
-import { type Cell, figure, type Html, list, section, table } from "../html.js";
+import { type Cell, figures, type Html, list, paragraph, section, table } from "../html.js";
 import type { Prediction, StudyReport } from "../input.js";
 import { predictionFigures, spreadFigures } from "../interval-figures.js";
-import { estimateRow, withUnit } from "./rows.js";
+import { estimateRow, grouped, withUnit } from "./rows.js";
 
 /** What the vessel makes under each duty: value, interval, where mixing would put it. */
 export function predictionsSection(report: StudyReport): Html {
   const { predictions, states = [], along } = report;
   const driven = predictions.some((p) => (p.drivers?.length ?? 0) > 0);
   const rows = predictions.map((p) => {
-    const { bounds, boundsSay } = p;
+    const { bounds } = p;
     const between = bounds
       ? `${formatNumber(bounds.segregated, 3)} to ${withUnit(bounds.maximumMixedness, p.estimate.unit)}`
-      : (boundsSay ?? "");
-    return [
-      { words: p.duty, under: p.name },
-      ...valueCells(p),
-      bounds && boundsSay ? { words: between, under: boundsSay } : between,
-      ...(driven ? [driverWords(p)] : []),
-    ];
+      : "";
+    return [{ words: p.duty, under: p.name }, ...valueCells(p), between, ...(driven ? [driverWords(p)] : [])];
   });
   const columns = [
     { head: "duty" },
     { head: "value", number: true },
     { head: "95 % interval", number: true },
-    { head: "segregated to maximum mixedness" },
+    { head: "segregated to maximum mixedness", number: true },
     ...(driven ? [{ head: "what is unsure rests with" }] : []),
   ];
   return section("predictions", "What it makes", [
-    ...predictionFigures(report).map(figure),
+    figures(predictionFigures(report)),
     table("Predictions", columns, rows),
+    ...boundsWords(predictions).map((says) => paragraph(says)),
     states.length > 0 ? `<h3>Steady states</h3>${list(states)}` : "",
-    ...spreadFigures(report).map(figure),
-    ...along.map(figure),
+    figures([...spreadFigures(report), ...along]),
   ]);
 }
+
+/** What follows from the bounds of mixing, once for all figures of which it is true. */
+const boundsWords = (predictions: readonly Prediction[]): string[] =>
+  grouped(
+    predictions.filter((p) => p.boundsSay !== undefined),
+    (p) => p.boundsSay ?? "",
+  ).map(([says, of]) => `${[...new Set(of.map((p) => p.name))].join(", ")}: ${uncapital(says)}`);
+
+const uncapital = (words: string): string => words.charAt(0).toLowerCase() + words.slice(1);
 
 /** Value and interval; below the interval what is kept on the side that hurts. */
 function valueCells(p: Prediction): Cell[] {

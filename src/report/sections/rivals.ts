@@ -1,13 +1,13 @@
 import { formatNumber } from "../../units/format.js";
 import { atDecimals, chance } from "../digits.js";
-import { figure, type Html, list, paragraph, section, table } from "../html.js";
-import type { StudyReport } from "../input.js";
+import { type Cell, figures, type Html, list, paragraph, section, table } from "../html.js";
+import type { Rival, StudyReport } from "../input.js";
 
 /** Which networks were tried, how they rank, and which cannot be told apart. */
 export function rivalsSection({ rivals, equals, nested, rivalCurves }: StudyReport): Html {
   const best = Math.min(...rivals.map((r) => r.aicc));
   const rows = rivals.map((r) => [
-    r.short === undefined ? r.network : { words: r.network, under: `in figures: ${r.short}` },
+    rivalCell(r),
     String(r.freeParameters),
     r.aicc - best < 100 ? atDecimals(r.aicc - best, 1) : formatNumber(r.aicc - best),
     chance(r.weight),
@@ -25,6 +25,12 @@ export function rivalsSection({ rivals, equals, nested, rivalCurves }: StudyRepo
     table("Ranked by the small-sample Akaike criterion", columns, rows),
     ...told,
     ...(nested && nested.length > 0 ? [paragraph("Special cases of others:"), list(nested)] : []),
-    ...rivalCurves.map(figure),
+    figures(rivalCurves),
   ]);
+}
+
+/** Its letter in the figures, its title; below, its file. */
+function rivalCell({ letter, network, file }: Rival): Cell {
+  const words = letter === undefined ? network : `${letter}\u2002${network}`;
+  return file === undefined ? words : { words, under: file };
 }

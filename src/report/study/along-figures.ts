@@ -1,3 +1,4 @@
+import { columnWidth } from "../../draw/picture.js";
 import { profilesAlong } from "../../reaction/profile.js";
 import type { Prediction } from "../../study/result.js";
 import type { Figure } from "../input.js";
@@ -13,7 +14,7 @@ export function alongFigures(predictions: readonly Prediction[]): Figure[] {
     return [
       {
         name: `along-${k + 1}`,
-        ...plotAlong(plant, duty, steady.species, profiles, { untitled: true, height: 150 }),
+        ...plotAlong(plant, duty, steady.species, profiles, { untitled: true, width: columnWidth, height: 150 }),
         caption: `${duty.title}: the mixture on its way through what it flows along; the right end is what leaves.`,
       },
     ];

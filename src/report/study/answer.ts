@@ -1,4 +1,5 @@
-import type { ChangedFigure, ChangeOutcome, StudyResult } from "../../study/result.js";
+import type { ChangedFigure, ChangeOutcome, Prediction, StudyResult } from "../../study/result.js";
+import type { Unit } from "../../units/unit.js";
 import { chance, estimateLine, figureLine } from "../digits.js";
 import type { AnswerLine } from "../input.js";
 import { aimWords } from "./aim-words.js";
@@ -7,11 +8,13 @@ import { spreadWords } from "./driver-words.js";
 import { differenceEstimate, estimate, readingUnit } from "./estimate.js";
 import { beyondAim, beyondWords } from "./tested.js";
 import { traitsOf } from "./traits.js";
+import { isUntested } from "./untested.js";
 
 /** The answer in about five lines: what is wrong, how sure, what it makes, what a change brings, what is still open. */
 export function answerOf(result: StudyResult): AnswerLine[] {
   const best = result.ranking[0];
   if (result.stopped) return [{ about: "Interrupted", says: interrupted(result) }];
+  if (best?.plant && isUntested(result)) return untestedAnswer(result);
   if (!best?.fit || !best.plant) {
     return [{ about: "No answer", says: "No network could be fitted to these trials; see the findings." }];
   }
@@ -34,6 +37,30 @@ export function answerOf(result: StudyResult): AnswerLine[] {
     ...takes(result).map((says) => ({ about: "What it takes", says })),
     ...measure(result).map((says) => ({ about: "What to measure", says })),
     { about: "Still open", says: open(result) },
+  ];
+}
+
+/** Nothing was measured: what the files say is what there is. */
+function untestedAnswer(result: StudyResult): AnswerLine[] {
+  const names = result.ranking.filter((r) => r.survives).map((r) => `'${r.rival.network.title}'`);
+  const taken =
+    names.length > 1
+      ? `${names.join(", ")} are taken as they are written, and nothing tells which is right; the lines below are of the first`
+      : `${names[0]} is taken as it is written`;
+  return [
+    {
+      about: "How sure",
+      says: `No test stands behind this: ${taken}. Intervals carry only the ± that the files declare.`,
+    },
+    ...makes(result).map((says) => ({ about: "What it makes", says })),
+    ...bestChange(result).map((says) => ({ about: "What to do", says })),
+    ...flips(result).map((says) => ({ about: "What to do", says })),
+    ...takes(result).map((says) => ({ about: "What it takes", says })),
+    ...measure(result).map((says) => ({ about: "What to measure", says })),
+    {
+      about: "Still open",
+      says: "Whether the vessel is as it is written. Plan a tracer test (`backmix plan`) and give it under `trials:` before money is spent.",
+    },
   ];
 }
 
@@ -74,12 +101,26 @@ function makes(result: StudyResult): string[] {
     if (!p) return [];
     const unit = readingUnit(duty, p.name, p.unit);
     const now = `${duty.title}: ${p.name} ${figureLine(p.name, estimate(p.value, p.interval95, unit))}${beyondWords(result.study, duty)}`;
-    if (!p.bounds || p.bounds.apply === "no") return [`${now}.`];
-    if (p.bounds.position === undefined) return [`${now}; with these rates the residence times alone fix it.`];
+    const other = otherState(p, first.filter((x) => x.duty === duty).indexOf(p), unit);
+    if (!p.bounds || p.bounds.apply === "no") return [`${now}.${other}`];
+    if (p.bounds.position === undefined) return [`${now}; with these rates the residence times alone fix it.${other}`];
     const low = estimateLine(estimate(Math.min(p.bounds.segregated, p.bounds.maximumMixedness), undefined, unit));
     const high = estimateLine(estimate(Math.max(p.bounds.segregated, p.bounds.maximumMixedness), undefined, unit));
-    return [`${now}; late or early mixing of the same flow pattern would give ${low} to ${high}.`];
+    return [`${now}; late or early mixing of the same flow pattern would give ${low} to ${high}.${other}`];
   });
+}
+
+/** That the vessel may as well run at another steady state, with the figure that is farthest from this. */
+function otherState({ states, value, name }: Prediction, line: number, unit: Unit): string {
+  const followed = states?.states.find((s) => s.reached);
+  if (followed?.stable === false) return " That state is unstable: the vessel does not stay there.";
+  const others = (states?.states ?? []).filter((s) => !s.reached && s.stable !== false);
+  const far = others
+    .map((s) => s.figures[line]?.value ?? Number.NaN)
+    .filter(Number.isFinite)
+    .sort((a, b) => Math.abs(b - value) - Math.abs(a - value))[0];
+  if (far === undefined) return "";
+  return ` It may as well run at another steady state, with ${figureLine(name, estimate(far, undefined, unit))}: which one depends on how it came there.`;
 }
 
 function bestChange(result: StudyResult): string[] {

@@ -1,10 +1,12 @@
+import { columnWidth } from "../../draw/picture.js";
 import type { Asked } from "../../model/study.js";
 import type { Answered, StudyResult } from "../../study/result.js";
+import { inBrackets } from "../digits.js";
 import type { Figure, ReportAim } from "../input.js";
 import { aimText, aimWords } from "./aim-words.js";
 import { sweepJumpWords } from "./jump-words.js";
 import { sweepStatesWords } from "./states-words.js";
-import { plotSweep } from "./sweep-figure.js";
+import { plotSweepApart } from "./sweep-figure.js";
 import { beyondAim, beyondRange, beyondWords } from "./tested.js";
 
 /** "(with Second tank; by 'R-12')": what an answer is about beside the duty, where it is not the vessel as it is. */
@@ -33,18 +35,13 @@ export function sweepFigures(result: StudyResult): Figure[] {
       .filter((says) => says !== "")
       .map((says) => ` Partly ${says.charAt(0).toLowerCase()}${says.slice(1)}`)
       .join("");
-    return [
-      {
-        name: `sweep-${k + 1}`,
-        ...plotSweep(found, { untitled: true }),
-        caption: `${asked.duty.title} over ${names}${about(result, answer)}${ownFlow ? "" : beyondWords(result.study, asked.duty)}${band}.${beyond}${gaps}${[
-          ...sweepJumpWords(found),
-          ...sweepStatesWords(found),
-        ]
-          .map((s) => ` ${s}`)
-          .join("")}`,
-      },
-    ];
+    const apart = plotSweepApart(found, { untitled: true, width: columnWidth, height: 170 });
+    const states = [...sweepJumpWords(found), ...sweepStatesWords(found)].map((s) => ` ${s}`).join("");
+    return apart.map(({ of, made }, i) => ({
+      name: apart.length === 1 ? `sweep-${k + 1}` : `sweep-${k + 1}-${i + 1}`,
+      ...made,
+      caption: `${asked.duty.title}: ${inBrackets(of)} over ${names}${about(result, answer)}${ownFlow ? "" : beyondWords(result.study, asked.duty)}; dots are what was computed${band}.${beyond}${i === 0 ? `${gaps}${states}` : ""}`,
+    }));
   });
 }
 

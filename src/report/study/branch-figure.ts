@@ -59,7 +59,7 @@ export function plotBranches(plot: BranchPlot, options: CurvesOptions = {}): Plo
       lines,
       upright: { at: x(input.value), label: typeset(`now ${formatQuantity(input.value, input.unit, 4)}`) },
       points: {
-        names: turns.map((t) => typeset(`${turnWords(t.what)} ${formatQuantity(t.at, input.unit, 4)}`)),
+        names: turns.map((t) => typeset(`${turnWords(t)} ${formatQuantity(t.at, input.unit, 4)}`)),
         x: turns.map((t) => x(t.at)),
         y: turns.map((t) => y(figuresAt({ at: t.at, state: t.state, stable: undefined })[k])),
       },
@@ -69,11 +69,12 @@ export function plotBranches(plot: BranchPlot, options: CurvesOptions = {}): Plo
 }
 
 /** What happens to the state that a vessel runs at: "ignites". */
-export const turnWords = (what: Turn["what"]): string =>
+export const turnWords = ({ what, of }: Pick<Turn, "what" | "of">): string =>
   ({
     ignites: "ignites",
     "goes out": "goes out",
     ends: "the state ends",
     swings: "begins to swing",
     "gives way": "gives way to another state",
+    "washes out": `${of} washes out`,
   })[what];

@@ -5,11 +5,12 @@ import { analysesOf } from "./analyses.js";
 import { answerOf } from "./answer.js";
 import { reportAims, sweepFigures } from "./asked.js";
 import { changeRows, severalSurvive } from "./change-rows.js";
-import { dataQuality, findingsOf } from "./data.js";
+import { dataQuality } from "./data.js";
 import { decisionWords } from "./decision-words.js";
 import { parameterEstimate } from "./estimate.js";
 import { curveFigures, rivalFigures } from "./figures.js";
-import { furtherWords } from "./further-words.js";
+import { dataRemarks, findingsOf, notSupportedOf } from "./findings.js";
+import { furtherOf } from "./further-words.js";
 import { assumptionsOf, cautionsOf } from "./grounds.js";
 import { identifiabilityOf } from "./identifiability.js";
 import { inTimeFigures } from "./in-time-figures.js";
@@ -27,6 +28,7 @@ export function reportOf(result: StudyResult, provenance: Omit<Provenance, "seed
   const best = result.ranking[0];
   const vessel = best && vesselFigure(best, result.study.trials);
   const identifiability = best?.fit ? identifiabilityOf(best) : { says: [], correlations: [], figures: [] };
+  const further = furtherOf(result.further);
   const tested = testedFlows(result.study);
   const predicted = best ? result.predictions.filter((p) => p.rival === best.rival) : [];
   return {
@@ -36,13 +38,15 @@ export function reportOf(result: StudyResult, provenance: Omit<Provenance, "seed
     curves: curveFigures(result),
     analyses: analysesOf(result),
     data: dataQuality(result),
-    ...findingsOf(result),
+    dataRemarks: dataRemarks(result),
+    findings: findingsOf(result),
+    notSupported: notSupportedOf(result),
     rivals: rivalRows(result),
     equals: equalsOf(result),
     nested: result.nested.map(nestedWords),
     rivalCurves: rivalFigures(result),
     parameters: best?.fit ? parametersOf(best) : [],
-    identifiability: { ...identifiability, says: [...identifiability.says, ...furtherWords(result.further)] },
+    identifiability: { ...identifiability, ...(further ? { further } : {}) },
     residence: result.residence && best ? residenceFigures(result.residence, best.rival.network.units.time) : [],
     predictions: predictionRows(result),
     states: studyStatesWords(result),

@@ -1,8 +1,9 @@
 import { plotCurves } from "../../draw/curves.js";
 import { plotFit } from "../../draw/fit-curve.js";
+import { columnWidth } from "../../draw/picture.js";
 import type { FittedReading } from "../../fit/result.js";
 import { readingLabel, type Trial } from "../../model/trial.js";
-import type { Ranked, StudyResult } from "../../study/result.js";
+import type { StudyResult } from "../../study/result.js";
 import { differenceInUnit, inUnit, type Unit } from "../../units/unit.js";
 import type { Figure } from "../input.js";
 import { residualFigure } from "./residual-figure.js";
@@ -12,12 +13,15 @@ export function curveFigures(result: StudyResult): Figure[] {
   const best = result.ranking[0];
   const { fit } = best ?? {};
   if (!fit) return [];
+  let first = true;
   return result.study.trials.flatMap((trial, k) => {
     const readings = fit.readings.filter((r) => r.trial === trial.title && !r.of?.steady);
     if (readings.length === 0) return [];
     const { time } = best.rival.network.units;
     const start = trial.injections[0]?.start ?? 0;
-    return [fitFigure(trial, readings, time, start, k), residualFigure(fit, trial, readings, time, k)];
+    const drawn = [fitFigure(trial, readings, time, start, k), residualFigure(fit, trial, readings, time, k, first)];
+    first = false;
+    return drawn;
   });
 }
 
@@ -51,7 +55,7 @@ function fitFigure(trial: Trial, readings: readonly FittedReading[], time: Unit,
         };
       }),
     },
-    { untitled: true },
+    { untitled: true, width: columnWidth },
   );
   return {
     name: `fit-${k + 1}`,
@@ -80,9 +84,9 @@ function rivalFigure(
   start: number,
   k: number,
 ): Figure[] {
-  const fitted = result.ranking.flatMap((r) => {
+  const fitted = result.ranking.flatMap((r, place) => {
     const own = r.fit?.readings.find((x) => x.key === measured.key);
-    return own ? [{ r, own }] : [];
+    return own ? [{ r, place, own }] : [];
   });
   if (fitted.length < 2) return [];
   const x = measured.time.map((t) => inUnit(t - start, time));
@@ -93,18 +97,19 @@ function rivalFigure(
       x: `time, ${time.name}`,
       y: `${measured.of ? readingLabel(measured) : "tracer"}, ${measured.unit.name}`,
       points: { x, y: shown(measured.measured) },
-      lines: fitted.map(({ r, own }, i) => ({ label: shortName(r), x, y: shown(own.fitted), accent: i === 0 })),
+      lines: fitted.map(({ place, own }, i) => ({ label: letterOf(place), x, y: shown(own.fitted), accent: i === 0 })),
     },
-    { log: true, untitled: true },
+    { log: true, untitled: true, width: columnWidth, height: 200 },
   );
   return [
     {
       name: `rivals-${k + 1}`,
       ...made,
-      caption: `${trial.title}: every network fitted to the same points, on a logarithmic axis.`,
+      caption: `${trial.title}: every network fitted to the same points, on a logarithmic axis. ${fitted.map(({ r, place }) => `${letterOf(place)}: ${r.rival.network.title}`).join("; ")}.`,
     },
   ];
 }
 
-/** The name of a rival's file, without folder and ending: short enough for the end of a line. */
-export const shortName = (r: Ranked): string => (r.rival.path.split("/").at(-1) ?? "").replace(/\.ya?ml$/, "");
+/** A, B, C by rank: short enough for the end of a line. */
+export const letterOf = (place: number): string =>
+  place < 26 ? String.fromCharCode(65 + place) : `${letterOf(Math.floor(place / 26) - 1)}${letterOf(place % 26)}`;

@@ -4,6 +4,7 @@ import { dutyTriggers } from "../duty-cautions.js";
 import type { CautionTriggers } from "../input.js";
 import { sweepsSkipped } from "./asked.js";
 import { traitsOf } from "./traits.js";
+import { isUntested } from "./untested.js";
 
 /** What is taken for granted, and what was left out. */
 export function assumptionsOf(result: StudyResult): string[] {
@@ -12,10 +13,16 @@ export function assumptionsOf(result: StudyResult): string[] {
   );
   const lost = result.ranking.filter((r) => !r.survives).length;
   return [
-    "Flow and volume were steady during each test, and the tracer followed the liquid.",
-    "Intervals carry what the fit leaves open and every ± that the files declare; constants of the vessel are drawn beside the fitted values, which errs on the wide side.",
+    ...(isUntested(result)
+      ? [
+          "Nothing was tested or fitted: the vessel is taken to be as the network says, and intervals carry every ± that the files declare.",
+        ]
+      : [
+          "Flow and volume were steady during each test, and the tracer followed the liquid.",
+          "Intervals carry what the fit leaves open and every ± that the files declare; constants of the vessel are drawn beside the fitted values, which errs on the wide side.",
+        ]),
     `Predictions rest on ${result.draws} draws${lost > 0 ? "; only networks with a weight above 5 % were taken further" : ""}.`,
-    "A change keeps every fitted value but those that it sets itself.",
+    `A change keeps every ${isUntested(result) ? "" : "fitted "}value but those that it sets itself.`,
     ...skipped,
     ...sweepsSkipped(result),
   ];
@@ -37,6 +44,7 @@ export function cautionsOf(result: StudyResult, extrapolated: readonly string[])
     ...(own.disinfection ? { drinkingWater: true } : {}),
     toxic: reacting && traits.some((t) => t.is === "bypass" || t.is === "dead"),
     radiotracer: radio,
+    untested: isUntested(result),
     extrapolated,
   };
 }

@@ -1,3 +1,4 @@
+import { columnWidth } from "../../draw/picture.js";
 import { type ProfilePanel, plotProfiles } from "../../draw/profiles.js";
 import { plotRegions, type RegionAxis, type RegionPair } from "../../draw/regions.js";
 import { typeset } from "../../draw/scale.js";
@@ -7,7 +8,7 @@ import { differenceInUnit, inUnit } from "../../units/unit.js";
 import { atDecimals, chance } from "../digits.js";
 import type { Figure, Identifiability } from "../input.js";
 
-const mostPairs = 6;
+const mostPairs = 4;
 /** From here on a pair is named in words. */
 const close = 0.9;
 
@@ -64,7 +65,7 @@ function profiles({ fit, rival }: Ranked): Figure[] {
   return [
     {
       name: "profiles",
-      ...plotProfiles({ title, profiles: panels }, { untitled: true }),
+      ...plotProfiles({ title, profiles: panels }, { untitled: true, width: columnWidth }),
       caption:
         "How the misfit rises as each parameter is held beside its best value and the others follow; where it reaches the line the tests alone rule the value out (95 %). Dashed: what linear theory takes it for; where the two part, believe the profile. The bar on the axis also carries what declared ± bring. A flat stretch is what the tests cannot tell.",
     },
@@ -89,7 +90,7 @@ function regions({ fit, rival }: Ranked, correlations: Identifiability["correlat
   return [
     {
       name: "regions",
-      ...plotRegions({ title, pairs, freedom: fit.freedom }, { untitled: true }),
+      ...plotRegions({ title, pairs, freedom: fit.freedom }, { untitled: true, width: columnWidth }),
       caption: `Inside each ellipse lies 95 % of what the fit leaves possible for a pair together; the bars on the axes are the ${chance(0.95)} intervals of each alone.${left}`,
     },
   ];

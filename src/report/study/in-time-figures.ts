@@ -1,3 +1,4 @@
+import { columnWidth } from "../../draw/picture.js";
 import { speciesUnits } from "../../reaction/species-units.js";
 import type { Prediction } from "../../study/result.js";
 import type { Transient } from "../../transient/transient.js";
@@ -15,7 +16,7 @@ export function inTimeFigures(predictions: readonly Prediction[]): Figure[] {
     return [
       {
         name: `in-time-${k + 1}`,
-        ...plotTransient(plant, duty, untilSettled(run), units, { untitled: true }),
+        ...plotTransient(plant, duty, untilSettled(run), units, { untitled: true, width: columnWidth, height: 160 }),
         caption: `${duty.title}: what leaves the vessel as fitted over time, from the start of the duty's clock.`,
       },
     ];

@@ -1,4 +1,5 @@
 import { type CurveLine, plotCurves } from "../../draw/curves.js";
+import { columnWidth } from "../../draw/picture.js";
 import type { Banded, Residence } from "../../study/residence.js";
 import { inUnit, type Unit } from "../../units/unit.js";
 import type { Figure } from "../input.js";
@@ -24,7 +25,7 @@ export function residenceFigures(of: Residence, unit: Unit): Figure[] {
     log = false,
   ): Figure => ({
     name,
-    ...plotCurves({ title, x, y, lines }, { untitled: true, height: 170, log }),
+    ...plotCurves({ title, x, y, lines }, { untitled: true, width: columnWidth, height: 160, log }),
     caption,
   });
   const bands = of.exitAge.band ? " The grey bands hold 95 % of the curves that the fit leaves possible." : "";

@@ -1,3 +1,4 @@
+import { columnWidth } from "../../draw/picture.js";
 import { plotResiduals, type ResidualReading } from "../../draw/residuals.js";
 import type { Fit, FittedReading } from "../../fit/result.js";
 import { readingLabel, type Trial } from "../../model/trial.js";
@@ -6,13 +7,17 @@ import type { Figure } from "../input.js";
 
 const mostLags = 25;
 
-/** What the fit leaves of a trial's readings in standard deviations, and how neighbours hang together. */
+/**
+ * What the fit leaves of a trial's readings in standard deviations, and how neighbours hang together.
+ * @param first  of its kind on the page: the others need not say again how to read it
+ */
 export function residualFigure(
   fit: Fit,
   trial: Trial,
   readings: readonly FittedReading[],
   time: Unit,
   k: number,
+  first: boolean,
 ): Figure {
   const start = trial.injections[0]?.start ?? 0;
   const sd = spreadOf(fit);
@@ -27,12 +32,12 @@ export function residualFigure(
   });
   const made = plotResiduals(
     { title: `${trial.title}: residuals`, timeUnit: time.name, readings: rows },
-    { untitled: true },
+    { untitled: true, width: columnWidth },
   );
   return {
     name: `residuals-${k + 1}`,
     ...made,
-    caption: `${trial.title}: weighted residuals and how neighbours hang together. In the shaded bands lie 95 % of what independent residuals would give: a pattern, or bars beyond the band, is curve that this network does not explain, or noise that comes in waves.`,
+    caption: `${trial.title}: weighted residuals and how neighbours hang together.${first ? " In the shaded bands lie 95 % of what independent residuals would give: a pattern, or bars beyond the band, is curve that this network does not explain, or noise that comes in waves." : ""}`,
   };
 }
 

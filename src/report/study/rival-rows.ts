@@ -1,11 +1,13 @@
 import { explainsNothing } from "../../fit/explains-nothing.js";
 import type { Ranked, StudyResult } from "../../study/result.js";
 import type { Rival } from "../input.js";
-import { shortName } from "./figures.js";
+import { letterOf } from "./figures.js";
 import { sameCurveWords } from "./further-words.js";
+import { isUntested } from "./untested.js";
 
-/** The networks that were tried, best first. */
-export const rivalRows = (result: StudyResult): Rival[] => result.ranking.map((r, i) => rivalRow(r, i, result));
+/** The networks that were tried, best first; none where no trial compares them. */
+export const rivalRows = (result: StudyResult): Rival[] =>
+  isUntested(result) ? [] : result.ranking.map((r, i) => rivalRow(r, i, result));
 
 function rivalRow(r: Ranked, place: number, result: StudyResult): Rival {
   const lead = result.ranking[0];
@@ -20,7 +22,7 @@ function rivalRow(r: Ranked, place: number, result: StudyResult): Rival {
           : `leaves ${ratioWords(r, lead)} as much unexplained as the best`;
   return {
     network: r.rival.network.title,
-    ...(result.ranking.length > 1 ? { short: shortName(r) } : {}),
+    ...(result.ranking.length > 1 ? { letter: letterOf(place), file: r.rival.path.replace(/^.*[\\/]/u, "") } : {}),
     freeParameters: r.fit?.freeParameters ?? 0,
     aicc: r.fit ? r.standing.criterion : Number.NaN,
     weight: r.standing.weight,
@@ -38,9 +40,11 @@ function ratioWords(r: Ranked, lead: Ranked): string {
 /** What these tests, or any test at the outlet, cannot tell apart. */
 export function equalsOf(result: StudyResult): string[] {
   const [best, ...others] = result.ranking.filter((r) => r.survives);
-  const byTests = others.map(
-    (r) => `'${best.rival.network.title}' and '${r.rival.network.title}' cannot be told apart by these tests`,
-  );
+  const byTests = isUntested(result)
+    ? []
+    : others.map(
+        (r) => `'${best.rival.network.title}' and '${r.rival.network.title}' cannot be told apart by these tests`,
+      );
   const byAny = result.sameCurves.map(
     (s) => `${sameCurveWords(s)}: no test at the outlet tells it from the best network`,
   );

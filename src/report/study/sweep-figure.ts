@@ -1,4 +1,4 @@
-import { type CurvesOptions, plotStacked } from "../../draw/curves.js";
+import { type Curves, type CurvesOptions, plotStacked } from "../../draw/curves.js";
 import type { Plotted } from "../../draw/plotted.js";
 import type { Sweep, SweepPoint } from "../../study/sweep.js";
 import { formatQuantity } from "../../units/format.js";
@@ -14,14 +14,29 @@ const mostDots = 40;
  * Every figure of a sweep over its first input, one plot each; where there is a second input, one line for each of its values.
  * Bands hold 95 % of what is possible.
  */
-export function plotSweep({ operation, axes, points, jumps }: Sweep, options: CurvesOptions = {}): Plotted {
-  const { network, duty } = operation;
+export function plotSweep(sweep: Sweep, options: CurvesOptions = {}): Plotted {
+  const plots = panelsOf(sweep);
+  return plotStacked(titleOf(sweep), plots, { height: plots.length > 1 ? 170 : 240, ...options });
+}
+
+/** The same, each figure in a drawing of its own. */
+export const plotSweepApart = (
+  sweep: Sweep,
+  options: CurvesOptions = {},
+): readonly { readonly of: string; readonly made: Plotted }[] =>
+  panelsOf(sweep).map((p) => ({ of: p.y, made: plotStacked(`${p.title}: ${titleOf(sweep)}`, [p], options) }));
+
+const titleOf = ({ operation: { duty, network }, axes }: Sweep): string =>
+  `${duty.title} over ${axes.map((a) => a.input.name).join(" and ")}: ${network.title}`;
+
+function panelsOf({ operation, axes, points, jumps }: Sweep): Curves[] {
+  const { duty } = operation;
   const [first, second] = axes;
   const { input, log } = first;
   const count = second?.values.length ?? 1;
   const every = Math.ceil(count / mostLines);
   const chosen = Array.from({ length: count }, (_, j) => j).filter((j) => j % every === 0);
-  const plots = duty.report.flatMap((reported, k) => {
+  return duty.report.flatMap((reported, k): Curves[] => {
     const unit = unitOf(points, k);
     if (!unit) return [];
     const shown = readingUnit(duty, reported.text, unit);
@@ -75,8 +90,6 @@ export function plotSweep({ operation, axes, points, jumps }: Sweep, options: Cu
       },
     ];
   });
-  const title = `${duty.title} over ${axes.map((a) => a.input.name).join(" and ")}: ${network.title}`;
-  return plotStacked(title, plots, { height: plots.length > 1 ? 170 : 240, ...options });
 }
 
 interface Drawn {
