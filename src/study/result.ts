@@ -11,6 +11,7 @@ import type { RegulatedFigures } from "../reaction/regulated.js";
 import type { SteadyState } from "../reaction/steady.js";
 import type { Unit } from "../units/unit.js";
 import type { AimResult } from "./aim.js";
+import type { DiversionWindow } from "./diversion.js";
 import type { InTime } from "./in-time.js";
 import type { Nested } from "./nested.js";
 import type { OtherStates } from "./other-states.js";
@@ -86,6 +87,8 @@ export interface Prediction {
   readonly steady: SteadyState;
   /** Further steady states; undefined where one was found and nothing is against it. */
   readonly states: OtherStates | undefined;
+  /** Of a time beyond a limit in a duty that changes: when to turn away what leaves, over the draws. */
+  readonly diversion: DiversionWindow | undefined;
   /** What leaves in time, where the duty changes in time. */
   readonly course: InTime | undefined;
   /** The vessel as it is operated there. */

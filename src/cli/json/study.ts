@@ -1,5 +1,7 @@
 import { explainsNothing } from "../../fit/explains-nothing.js";
+import type { Network } from "../../model/network.js";
 import type { Asked } from "../../model/study.js";
+import type { DiversionWindow } from "../../study/diversion.js";
 import type {
   Answered,
   Bounds,
@@ -11,6 +13,7 @@ import type {
   StudyResult,
 } from "../../study/result.js";
 import type { Spread } from "../../study/spread-shares.js";
+import { dimensions } from "../../units/dimension.js";
 import { inUnit, type Unit } from "../../units/unit.js";
 import { fitJson } from "./fit.js";
 import { furtherJson, sameCurveJson } from "./further.js";
@@ -86,6 +89,7 @@ function predictionJson({
   bounds,
   spread,
   states,
+  diversion,
 }: Prediction): object {
   return {
     duty: duty.title,
@@ -97,8 +101,19 @@ function predictionJson({
     bounds: bounds ? boundsJson(bounds, unit) : null,
     ...spreadJson(spread, unit),
     ...(states ? { otherStates: otherStatesJson(states, []) } : {}),
+    ...(diversion ? { diversion: diversionJson(diversion, unit, rival.network) } : {}),
   };
 }
+
+/** When to turn away what leaves. */
+const diversionJson = ({ window, draws }: DiversionWindow, time: Unit, { units }: Network): object => ({
+  draws,
+  touched: window?.touched ?? 0,
+  stillAtEnd: window?.stillAtEnd ?? 0,
+  from: quantity(window?.from, time),
+  to: quantity(window?.to, time),
+  volume: quantity(window?.volume ?? 0, units.unitFor(dimensions.volume)),
+});
 
 /** What holds the variance: shares are fractions. */
 function spreadJson(spread: Spread | undefined, unit: Unit): object {
