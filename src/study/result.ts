@@ -12,6 +12,7 @@ import type { SteadyState } from "../reaction/steady.js";
 import type { Unit } from "../units/unit.js";
 import type { AimResult } from "./aim.js";
 import type { DiversionWindow } from "./diversion.js";
+import type { FineCurve } from "./fine-curves.js";
 import type { InTime } from "./in-time.js";
 import type { Nested } from "./nested.js";
 import type { OtherStates } from "./other-states.js";
@@ -45,6 +46,8 @@ export interface StudyResult {
   readonly sameCurves: readonly SameCurve[];
   /** Further tests of the best rival, the most telling first. */
   readonly further: readonly FurtherTest[];
+  /** Fitted curves of the best rival between the samples of readings with few of them, by the reading's key. */
+  readonly fine: ReadonlyMap<string, FineCurve>;
   /** Of the best rival. */
   readonly residence: Residence | undefined;
   /** Draws that intervals rest on. */

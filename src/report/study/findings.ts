@@ -31,7 +31,9 @@ export function notSupportedOf({ readings }: StudyResult): StudyReport["notSuppo
   for (const { trial, moments } of readings) {
     for (const words of moments.notSupported) {
       const [, what, says] = /^([^:]*): (.*)$/s.exec(words) ?? ["", words, ""];
-      const told = says === "" ? [] : [readings.length > 1 ? `${trial.title}: ${says}` : says];
+      // Where a test has one reading, nobody asks which.
+      const one = moments.readings.length < 2 ? says.replace(/ \(at '[^']*'\)$/, "") : says;
+      const told = one === "" ? [] : [readings.length > 1 ? `${trial.title}: ${one}` : one];
       byWhat.set(what, [...(byWhat.get(what) ?? []), ...told]);
     }
   }
