@@ -1,9 +1,6 @@
-import { checkDuty } from "../check/duty.js";
 import type { Plant } from "../compile/plant.js";
 import type { Duty } from "../model/duty.js";
 import { isClosed, type Network } from "../model/network.js";
-import { parseDuty } from "../parse/duty.js";
-import { collector } from "../problems/report.js";
 import { networkSettings } from "../reaction/conditions.js";
 import { temperatureUnit } from "../reaction/figures.js";
 import { speciesUnits } from "../reaction/species-units.js";
@@ -22,6 +19,7 @@ import type { Context } from "./context.js";
 import { columnsCsv } from "./csv.js";
 import { diversionJson, diversionText } from "./diversion-text.js";
 import { drawnAs } from "./drawn-as.js";
+import { dutyFor } from "./duty-for.js";
 import { transientJson } from "./json/transient.js";
 import { type Outcome, UsageError } from "./outcome.js";
 import { plantAt } from "./plant.js";
@@ -38,10 +36,7 @@ export async function simulateTransient(
   options: SimulateOptions,
   { inputs, io }: Context,
 ): Promise<Outcome> {
-  const duty = inputs.document(options.duty ?? "", parseDuty);
-  const { report, problems } = collector();
-  checkDuty(network, duty, report, true);
-  inputs.accept(problems);
+  const duty = dutyFor(inputs, options.duty ?? "", network, true);
   const plant = plantAt(network, { ...networkSettings(duty), ...settingsFrom(network, options.set, duty) });
   for (const name of options.at ?? []) requirePlace(name, plant.exit, "--at");
   if (options.funnel) return (await import("./simulate-funnel.js")).simulateFunnel(plant, duty, options, { io });
