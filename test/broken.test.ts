@@ -114,6 +114,7 @@ const shownBy: Record<keyof typeof runEntries, string> = {
   "no-signal-to-fit": "fit/run-codes.test.ts",
   "only-noise-to-fit": "fit/nothing.test.ts",
   "explains-nothing": "fit/nothing.test.ts",
+  "one-reading-rules": "fit/one-reading.test.ts",
   "trial-contradicted": "fit/reaction.test.ts",
   "lack-of-fit": "fit/replicates.test.ts",
   "spreads-differ": "fit/run-codes.test.ts",

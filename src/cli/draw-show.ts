@@ -1,4 +1,3 @@
-import { checkDuty } from "../check/duty.js";
 import { flowSheet } from "../draw/flow-sheet.js";
 import type { FlowSheet } from "../draw/sheet.js";
 import {
@@ -11,13 +10,12 @@ import {
   withTones,
 } from "../draw/shown.js";
 import type { Network } from "../model/network.js";
-import { parseDuty } from "../parse/duty.js";
-import { collector } from "../problems/report.js";
 import { networkSettings } from "../reaction/conditions.js";
 import { temperatureUnit } from "../reaction/figures.js";
 import { speciesUnits } from "../reaction/species-units.js";
 import { steadyState } from "../reaction/steady.js";
 import { nearest } from "../text/nearest.js";
+import { dutyFor } from "./duty-for.js";
 import type { Inputs } from "./inputs.js";
 import { UsageError } from "./outcome.js";
 import { plantAt } from "./plant.js";
@@ -45,10 +43,7 @@ export function sheetWith(network: Network, { show, duty: file, set }: ShowOptio
     const plant = plantAt(network, settings);
     return { sheet: toned(flowSheet(plant), show, (name) => shownOfFlow(plant, name), undefined), converged: true };
   }
-  const duty = inputs.document(file, parseDuty);
-  const { report, problems } = collector();
-  checkDuty(network, duty, report);
-  inputs.accept(problems);
+  const duty = dutyFor(inputs, file, network);
   const plant = plantAt(network, { ...networkSettings(duty), ...settings });
   const state = steadyState(plant, duty.chemistry, duty);
   const units = speciesUnits(network, duty, state.species);

@@ -1,9 +1,6 @@
-import { checkDuty } from "../check/duty.js";
 import type { Plant } from "../compile/plant.js";
 import type { Duty } from "../model/duty.js";
 import { isClosed, type Network } from "../model/network.js";
-import { parseDuty } from "../parse/duty.js";
-import { collector } from "../problems/report.js";
 import { networkSettings } from "../reaction/conditions.js";
 import { temperatureUnit } from "../reaction/figures.js";
 import { predict } from "../reaction/prediction.js";
@@ -17,6 +14,7 @@ import { inUnit } from "../units/unit.js";
 import { writeAlong } from "./along.js";
 import type { Context } from "./context.js";
 import { columnsCsv } from "./csv.js";
+import { dutyFor } from "./duty-for.js";
 import { regulatedJson } from "./json/regulated.js";
 import { statesJson } from "./json/states.js";
 import { steadyJson } from "./json/steady.js";
@@ -36,12 +34,9 @@ export async function simulateDuty(
   options: SimulateOptions,
   { inputs, io }: Context,
 ): Promise<Outcome> {
-  const duty = inputs.document(options.duty ?? "", parseDuty);
   if (isClosed(network))
     throw new UsageError("a closed vessel has no steady state to look for: follow it with --transient");
-  const { report, problems } = collector();
-  checkDuty(network, duty, report);
-  inputs.accept(problems);
+  const duty = dutyFor(inputs, options.duty ?? "", network);
   const plant = plantAt(network, { ...networkSettings(duty), ...settingsFrom(network, options.set, duty) });
   const progress = progressOn(io);
   const prediction = predict(plant, duty, {}, ({ together, missing }) =>

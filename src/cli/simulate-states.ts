@@ -1,7 +1,4 @@
-import { checkDuty } from "../check/duty.js";
 import type { Network } from "../model/network.js";
-import { parseDuty } from "../parse/duty.js";
-import { collector } from "../problems/report.js";
 import { type BranchPoint, nextTurns } from "../reaction/branches.js";
 import { figuresOf } from "../reaction/figures.js";
 import { steadyState } from "../reaction/steady.js";
@@ -12,6 +9,7 @@ import { statesAlong, steadyLines } from "../study/states-along.js";
 import { inUnit } from "../units/unit.js";
 import type { Context } from "./context.js";
 import { columnsCsv } from "./csv.js";
+import { dutyFor } from "./duty-for.js";
 import { branchesJson } from "./json/branches.js";
 import { type Outcome, UsageError } from "./outcome.js";
 import { plantAt } from "./plant.js";
@@ -29,10 +27,7 @@ export async function simulateStates(
   over: string,
   { inputs, io }: Context,
 ): Promise<Outcome> {
-  const duty = inputs.document(options.duty ?? "", parseDuty);
-  const { report, problems } = collector();
-  checkDuty(network, duty, report);
-  inputs.accept(problems);
+  const duty = dutyFor(inputs, options.duty ?? "", network);
   const option = `--states '${over}'`;
   const equals = over.indexOf("=");
   if (equals < 0) throw new UsageError(`${option}: write it like --states "feed.temperature=20 degC..80 degC"`);

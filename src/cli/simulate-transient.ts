@@ -1,9 +1,6 @@
-import { checkDuty } from "../check/duty.js";
 import type { Plant } from "../compile/plant.js";
 import type { Duty } from "../model/duty.js";
 import { isClosed, type Network } from "../model/network.js";
-import { parseDuty } from "../parse/duty.js";
-import { collector } from "../problems/report.js";
 import { networkSettings } from "../reaction/conditions.js";
 import { temperatureUnit } from "../reaction/figures.js";
 import { speciesUnits } from "../reaction/species-units.js";
@@ -14,14 +11,15 @@ import { drawsOf } from "../study/draws-of.js";
 import type { Operation } from "../study/operate.js";
 import { rowsFor } from "../study/sources.js";
 import { transientFigures } from "../transient/figures.js";
-import { asksForTime, endOf } from "../transient/in-time.js";
-import { type Transient, transient } from "../transient/transient.js";
+import { asksForTime, worthSeeing } from "../transient/in-time.js";
+import { closes, type Transient, transient } from "../transient/transient.js";
 import { formatQuantity } from "../units/format.js";
 import { inUnit } from "../units/unit.js";
 import type { Context } from "./context.js";
 import { columnsCsv } from "./csv.js";
 import { diversionJson, diversionText } from "./diversion-text.js";
 import { drawnAs } from "./drawn-as.js";
+import { dutyFor } from "./duty-for.js";
 import { transientJson } from "./json/transient.js";
 import { type Outcome, UsageError } from "./outcome.js";
 import { plantAt } from "./plant.js";
@@ -38,17 +36,14 @@ export async function simulateTransient(
   options: SimulateOptions,
   { inputs, io }: Context,
 ): Promise<Outcome> {
-  const duty = inputs.document(options.duty ?? "", parseDuty);
-  const { report, problems } = collector();
-  checkDuty(network, duty, report, true);
-  inputs.accept(problems);
+  const duty = dutyFor(inputs, options.duty ?? "", network, true);
   const plant = plantAt(network, { ...networkSettings(duty), ...settingsFrom(network, options.set, duty) });
   for (const name of options.at ?? []) requirePlace(name, plant.exit, "--at");
   if (options.funnel) return (await import("./simulate-funnel.js")).simulateFunnel(plant, duty, options, { io });
   const clock = clockFrom(options, network.units.time, () => {
     if (isClosed(network))
       throw new UsageError("a closed vessel's curve has no end: say how long with --until or --times");
-    return endOf(plant, duty);
+    return worthSeeing(plant, duty);
   });
   const places = network.compartments.map((c) => c.name).filter((name) => plant.exit.has(name));
   const run = transient(plant, duty.chemistry, duty, clock.si, {
@@ -65,9 +60,10 @@ export async function simulateTransient(
     io.write(output, made);
   }
   const diverted = run.stopped ? undefined : windows(network, duty, options);
-  const { stopped } = run;
+  const { stopped, balance } = run;
+  const open = balance !== undefined && balance.off > closes;
   return {
-    status: stopped ? 3 : 0,
+    status: stopped || open ? 3 : 0,
     text: blocks(
       transientText(plant, duty, run, figures, clock, options.at ?? []),
       curvesOn(io, () =>
@@ -85,7 +81,7 @@ export async function simulateTransient(
       output === undefined ? "" : `  curves: ${output}`,
     ),
     json: {
-      ok: !stopped,
+      ok: !stopped && !open,
       duty: duty.title,
       ...transientJson(plant, duty, run, figures, clock),
       cautions: dutyCautions(duty).map((c) => c.says),
@@ -98,7 +94,11 @@ export async function simulateTransient(
             ? `backmix: the steady state to start from did not converge, worst in ${stopped.node}; give \`contents:\` to start from something else`
             : `backmix: stopped at ${formatQuantity(stopped.t, clock.unit)} in ${stopped.node} (${stopped.why.replaceAll("-", " ")}): concentrations change too fast there to be followed; later values are left empty`,
         ]
-      : [],
+      : open
+        ? [
+            "backmix: the balances of this run do not close; its figures are not to be relied on (see the warning above); please report the files",
+          ]
+        : [],
   };
 }
 

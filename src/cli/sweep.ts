@@ -1,4 +1,3 @@
-import { checkDuty } from "../check/duty.js";
 import { checkTrial } from "../check/trial.js";
 import { uncarried } from "../compile/carried.js";
 import { compile } from "../compile/compile.js";
@@ -8,7 +7,6 @@ import type { Fit } from "../fit/result.js";
 import type { Duty } from "../model/duty.js";
 import type { Network } from "../model/network.js";
 import type { Trial } from "../model/trial.js";
-import { parseDuty } from "../parse/duty.js";
 import { parseNetwork } from "../parse/network.js";
 import { parseTrial } from "../parse/trial.js";
 import { collector } from "../problems/report.js";
@@ -20,6 +18,7 @@ import { rowsFor, sourcesOf } from "../study/sources.js";
 import { changes } from "../transient/course-line.js";
 import { formatNumber } from "../units/format.js";
 import type { Context } from "./context.js";
+import { dutyFor } from "./duty-for.js";
 import { InputError, type Outcome, UsageError } from "./outcome.js";
 import { plantAt } from "./plant.js";
 import { progressOn } from "./progress.js";
@@ -47,10 +46,7 @@ export async function sweepCommand(file: string, options: SweepOptions, context:
 
 function ask(file: string, options: SweepOptions, { inputs, io }: Context): Asked {
   const network = inputs.document(file, parseNetwork);
-  const duty = inputs.document(options.duty, parseDuty);
-  const { report, problems } = collector();
-  checkDuty(network, duty, report);
-  inputs.accept(problems);
+  const duty = dutyFor(inputs, options.duty, network);
   const set = settingsFrom(network, options.set, duty);
   const plant = compile(network, set).plant ?? plantAt(network, set);
   inputs.accept(uncarried(plant, "reaction"));

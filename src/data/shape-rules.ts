@@ -54,7 +54,7 @@ const rules: readonly ShapeRule[] = [
             evidence: `ln W is straight and meets the injection at ${number(line.intercept)} ± ${formatNumber(line.interceptError, 2)}: about ${percent(short)} of the flow came at once`,
           }
         : {
-            not: `bypass: the decay, drawn back to the injection, begins at ${number(line.intercept)} ± ${formatNumber(line.interceptError, 2)} of the tracer; with a bypass it would begin well below 1`,
+            not: `bypass: with one, the decay drawn back to the injection would begin well below the whole of the tracer; it begins at ${number(line.intercept)} ± ${formatNumber(line.interceptError, 2)} of it`,
           };
     },
   },
@@ -62,10 +62,10 @@ const rules: readonly ShapeRule[] = [
     code: "slow-exchange",
     look: ({ main, late, ...s }) => {
       if (!main) return undefined;
-      if (!late) return { not: "slow exchange: W is not seen far enough down to tell" };
+      if (!late) return { not: "slow exchange: too little of the tracer was followed to its end to tell" };
       if (!isSlow({ main, late, ...s }))
         return {
-          not: `slow exchange: the late decay is ${number(late.rate / main.rate)} times as fast as the early one; a quiet zone would make it much slower`,
+          not: `slow exchange: with a quiet zone, the late decay would be less than ${number(limit.slowRatio)} times as fast as the early one; it is ${number(late.rate / main.rate)} times as fast`,
         };
       return {
         evidence: `the late decay is ${number(late.rate / main.rate)} times the early one; its line meets the injection at ${percent(Math.min(1, late.intercept))} of the tracer`,
@@ -80,13 +80,18 @@ const rules: readonly ShapeRule[] = [
       const fallOf = ({ high, low }: (typeof pairs)[number]): number => (high.value - low.value) / high.value;
       const worst = pairs.reduce((best, p) => (fallOf(p) > fallOf(best) ? p : best), pairs[0]);
       const fall = fallOf(worst);
-      if (!(fall > 0)) return { not: "stagnancy: the escape intensity never falls" };
+      if (!(fall > 0))
+        return {
+          not: "stagnancy: with liquid held back, what has stayed longer would leave less readily; it never does",
+        };
       const { high, low } = worst;
       const sure = high.value - low.value > limit.sure * Math.hypot(high.error, low.error);
       const words = `falls to ${percent(1 - fall)} of what it was`;
       return sure && fall > limit.intensityFall
         ? { evidence: `it ${words}` }
-        : { not: `stagnancy: the escape intensity ${words} at most` };
+        : {
+            not: `stagnancy: with liquid held back, what has stayed longer would leave less readily (the escape intensity would fall); it ${words} at most`,
+          };
     },
   },
   {
@@ -95,7 +100,7 @@ const rules: readonly ShapeRule[] = [
       if (!isLoop(s))
         return s.peaks.length > 0
           ? {
-              not: `a loop inside: ${s.peaks.length === 1 ? "there is one peak" : `the ${s.peaks.length} peaks are no echoes at even distance`}`,
+              not: `a loop inside: the tracer would come by again and again, in peaks evenly apart and each lower; there ${s.peaks.length === 1 ? "is one peak" : `are ${s.peaks.length} peaks that are no such echoes`}`,
             }
           : undefined;
       const gaps = spacings(s);
@@ -126,7 +131,7 @@ const rules: readonly ShapeRule[] = [
       const steep = s.mode - s.first < 0.15 * s.mean && Math.abs(s.first - delay) < 0.15 * s.mean;
       if (!(delay > limit.sure * lag) || share < limit.delayLeast)
         return {
-          not: `a delay: the decay, drawn back to the injection, begins at ${number(line.intercept)} ± ${formatNumber(line.interceptError, 2)} of the tracer; with a tube before the tank it would begin well above 1`,
+          not: `a delay: with a tube before the tank, the decay drawn back to the injection would begin well above the whole of the tracer; it begins at ${number(line.intercept)} ± ${formatNumber(line.interceptError, 2)} of it`,
         };
       return steep
         ? {
@@ -143,7 +148,7 @@ const rules: readonly ShapeRule[] = [
       return width + 2 * widthError < limit.plug && Math.abs(mode - mean) < 0.25 * mean
         ? { evidence: `${words}: as about ${formatNumber(1 / width ** 2, 2)} tanks in a row` }
         : {
-            not: `near plug flow: the tracer left spread widely (${words}); in near plug flow it leaves within ${percent(limit.plug)} of it`,
+            not: `near plug flow: the tracer would leave close together, within ${percent(limit.plug)} of the middle time; ${words}`,
           };
     },
   },
@@ -152,7 +157,10 @@ const rules: readonly ShapeRule[] = [
     look: (s) => {
       const line = straight(s);
       const [low, high] = limit.mixed;
-      if (!line) return { not: "one well-mixed volume: ln W is not straight" };
+      if (!line)
+        return {
+          not: "one well-mixed volume: what is left would decay in one straight line of logarithms; it does not",
+        };
       const off = Math.abs(line.intercept - 1);
       const mixed =
         s.mode < limit.atOnce * s.mean &&
@@ -166,7 +174,7 @@ const rules: readonly ShapeRule[] = [
             evidence: `highest at ${percent(s.mode / s.mean)} of the mean, ln W straight from ${number(line.intercept)}, variance over squared mean ${number(s.relative)}`,
           }
         : {
-            not: `one well-mixed volume: it would decay in one straight line of logarithms from 1 at the injection, highest at once; seen were ${number(line.intercept)} there, highest at ${percent(s.mode / s.mean)} of the mean time, variance over squared mean ${number(s.relative)} (1 when well mixed)`,
+            not: `one well-mixed volume: the tracer would be highest at once and decay in one straight line of logarithms from the whole of it, with a variance equal to the mean squared; it was highest at ${percent(s.mode / s.mean)} of the mean time, its line begins at ${number(line.intercept)}, and its variance is ${number(s.relative)} times the mean squared`,
           };
     },
   },

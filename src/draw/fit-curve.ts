@@ -1,15 +1,15 @@
-import { line, path } from "../svg/marks.js";
-import { textWidth } from "../svg/measure.js";
-import { type Box, px, type Svg } from "../svg/svg.js";
+import { line } from "../svg/marks.js";
+import type { Box, Svg } from "../svg/svg.js";
 import { formatNumber } from "../units/format.js";
-import { type Axis, bottomAxis, leftAxis, leftRoom, linearAxis, logAxis } from "./axes.js";
+import { bottomAxis, leftAxis, leftRoom, linearAxis, logAxis } from "./axes.js";
 import { caption, drawCaption, lineHeight, type Words } from "./caption.js";
-import { Clutter } from "./clutter.js";
-import { separated } from "./heights.js";
+import { besideLine, clutterOf, type FitReading, inLines, lineOf, rug, timeMarks } from "./fit-marks.js";
 import { placeAt } from "./line-labels.js";
 import { narrow, type PictureOptions, picture } from "./picture.js";
 import { axisData, type PlotData, type Plotted } from "./plotted.js";
 import { area, largest, points, stems, trace } from "./traces.js";
+
+export type { FitReading } from "./fit-marks.js";
 
 /** Measured and fitted curve of one or more readings, each above its residuals. All arrays of a reading are of one length. */
 export interface FitCurve {
@@ -20,23 +20,6 @@ export interface FitCurve {
   /** What the line is, where it is not fitted. */
   readonly lineName?: string;
   readonly readings: readonly FitReading[];
-}
-
-export interface FitReading {
-  /** Trial and place. */
-  readonly label: string;
-  readonly time: ArrayLike<number>;
-  readonly measured: ArrayLike<number>;
-  readonly fitted: ArrayLike<number>;
-  readonly residual: ArrayLike<number>;
-  /** Points that the fit did not use, and why. */
-  readonly leftOut?: readonly { readonly time: number; readonly because: string }[];
-  /** 95 % of fitted curves lie here. */
-  readonly band?: { readonly low: ArrayLike<number>; readonly high: ArrayLike<number> };
-  /** Ticks under the time axis: t10, mean, t90. */
-  readonly marks?: readonly { readonly name: string; readonly time: number }[];
-  /** File that the points came from. */
-  readonly source?: string;
 }
 
 export interface FitCurveOptions extends PictureOptions {
@@ -82,7 +65,7 @@ function drawPanel(
 ): { svg: Svg; bottom: number; data: PlotData } {
   const lineName = curve.lineName ?? "fitted";
   const plotHeight = width <= narrow ? lowest : tallest;
-  const values = [...Array.from(r.measured), ...Array.from(r.fitted)];
+  const values = [...Array.from(r.measured), ...Array.from(r.fitted), ...Array.from(r.fine?.value ?? [])];
   const head = 42 + (width <= narrow ? lineHeight : 0);
   const yRange = [top + head + plotHeight, top + head] as const;
   const ay = log ? logAxis(values, yRange) : linearAxis([...values, 0, 1.06 * largest(values, 0)], yRange, 5, false);
@@ -98,11 +81,16 @@ function drawPanel(
   const measured = points(r.time, r.measured, ax, ay, "point", floor);
   const clutter = clutterOf(r, ax, ay);
   const leftOut = rug(r, ax, plot, clutter);
-  const name = (words: Words, of: ArrayLike<number>): Svg | undefined =>
-    placeAt(words, besideLine(r.time, of, ax, ay), clutter, plot);
+  const drawn = lineOf(r);
+  const name = (words: Words, time: ArrayLike<number>, of: ArrayLike<number>): Svg | undefined =>
+    placeAt(words, besideLine(time, of, ax, ay), clutter, plot);
   const names = [
-    name({ words: lineName, style: "name" }, r.fitted),
-    name({ words: width <= narrow ? "measured" : `measured, ${r.time.length} points`, style: "quiet" }, r.measured),
+    name({ words: lineName, style: "name" }, drawn.time, drawn.value),
+    name(
+      { words: width <= narrow ? "measured" : `measured, ${r.time.length} points`, style: "quiet" },
+      r.time,
+      r.measured,
+    ),
   ];
   const says = [
     r.source ? `${r.label}, from ${r.source}` : r.label,
@@ -116,7 +104,7 @@ function drawPanel(
     leftAxis(ay, plot, curve.value),
     r.band ? area(r.time, r.band.low, r.band.high, ax, ay) : "",
     measured.svg,
-    trace(r.time, r.fitted, ax, ay, "curve", floor),
+    trace(drawn.time, drawn.value, ax, ay, "curve", floor),
     leftOut,
     ...names.map((n) => n ?? ""),
     bottomAxis(ax, plot, "", true),
@@ -138,21 +126,10 @@ function drawPanel(
       { label: "measured", x: r.time, y: r.measured },
       { label: lineName, x: r.time, y: r.fitted },
       { label: "residual", x: r.time, y: r.residual, hidden: true },
+      ...(r.fine ? [{ label: `${lineName}, between`, x: r.fine.time, y: r.fine.value, hidden: true }] : []),
     ],
   };
   return { svg, bottom: strip.y + strip.height + (r.marks?.length ? 46 : 36), data };
-}
-
-/** Remarks one after the other, on as many lines as their width needs. */
-function inLines(says: readonly string[], width: number): Words[] {
-  const lines: string[] = [];
-  for (const s of says) {
-    const last = lines[lines.length - 1];
-    const longer = last === undefined ? s : `${last}; ${s}`;
-    if (last !== undefined && textWidth(longer, 11) > width) lines.push(s);
-    else lines[Math.max(0, lines.length - 1)] = longer;
-  }
-  return lines.map((words) => ({ words, style: "quiet" }));
 }
 
 /** 1, 2 or 5 times a power of ten, no more than a number. */
@@ -167,85 +144,6 @@ const residualName = (value: string): string => {
   const at = value.lastIndexOf(", ");
   return at < 0 || value.length < at + 3 ? "residual" : `residual${value.slice(at)}`;
 };
-
-/** Places beside a line, from its highest point rightwards, then leftwards. */
-function* besideLine(
-  time: ArrayLike<number>,
-  value: ArrayLike<number>,
-  ax: Axis,
-  ay: Axis,
-): Generator<{ x: number; y: number }> {
-  let peak = 0;
-  for (let k = 1; k < value.length; k++) if (value[k] > value[peak] || !Number.isFinite(value[peak])) peak = k;
-  for (const away of [6, 14, 26, 42, 64, 90, 130]) {
-    const step = Math.max(1, Math.round(value.length / 60));
-    for (let k = peak; k < time.length; k += step) {
-      if (!Number.isFinite(value[k])) continue;
-      yield { x: ax.at(time[k]) + away, y: ay.at(value[k]) - 7 };
-      yield { x: ax.at(time[k]) + away * 0.7, y: ay.at(value[k]) - 12 - away * 0.7 };
-    }
-  }
-}
-
-function clutterOf(r: FitReading, ax: Axis, ay: Axis): Clutter {
-  const clutter = new Clutter();
-  for (const line of [r.measured, r.fitted]) {
-    let before: { x: number; y: number } | undefined;
-    for (let k = 0; k < r.time.length; k++) {
-      if (!Number.isFinite(line[k])) continue;
-      const here = { x: ax.at(r.time[k]), y: ay.at(line[k]) };
-      if (before && Math.abs(here.x - before.x) + Math.abs(here.y - before.y) < 1) continue;
-      const joined = line === r.fitted && before ? before : here;
-      const [x, y] = [Math.min(here.x, joined.x), Math.min(here.y, joined.y)];
-      clutter.add({
-        x: x - 2,
-        y: y - 2,
-        width: Math.abs(here.x - joined.x) + 4,
-        height: Math.abs(here.y - joined.y) + 4,
-      });
-      before = here;
-    }
-  }
-  return clutter;
-}
-
-/** What was left out, as ticks along the top, with the reasons. */
-function rug(r: FitReading, ax: Axis, plot: Box, clutter: Clutter): Svg {
-  const out = r.leftOut ?? [];
-  if (out.length === 0) return "";
-  const reasons = [...new Set(out.map((o) => o.because))].join("; ");
-  const d = out
-    .filter((o) => o.time >= ax.domain[0] && o.time <= ax.domain[1])
-    .map((o) => `M${px(ax.at(o.time))} ${px(plot.y)}v8`)
-    .join("");
-  const words = `left out: ${reasons}`;
-  const first = ax.at(out[0].time);
-  const spots = [first, plot.x + plot.width - textWidth(words, 11), plot.x + 4].map((x) => ({ x, y: plot.y + 10 }));
-  return path(d, "point out") + (placeAt({ words, style: "quiet" }, spots, clutter, plot) ?? "");
-}
-
-/** Small marks under the time axis, their names apart from one another. */
-function timeMarks(r: FitReading, ax: Axis, plot: Box): Svg {
-  const marks = [...(r.marks ?? [])]
-    .filter((m) => m.time >= ax.domain[0] && m.time <= ax.domain[1])
-    .sort((a, b) => a.time - b.time);
-  const words = marks.map((m) => `${m.name} ${formatNumber(m.time, 3)}`);
-  const widths = words.map((w) => textWidth(w, 11, "bold"));
-  const gaps = marks.slice(1).map((_, k) => (widths[k] + widths[k + 1]) / 2 + 8);
-  const at = separated(
-    marks.map((m) => ax.at(m.time)),
-    marks.map(() => 1),
-    gaps,
-  );
-  const y = plot.y + plot.height;
-  return marks
-    .map((m, k) => {
-      const x = ax.at(m.time);
-      const tip = path(`M${px(x)} ${px(y)}l-4 7h8Z`, "terminal");
-      return tip + drawCaption(caption([{ words: words[k], style: "plain" }], at[k], y + 30, "middle"));
-    })
-    .join("");
-}
 
 function inWords(curve: FitCurve): string {
   const parts = curve.readings.map((r) => {

@@ -4,6 +4,7 @@ import { orthonormalBasis } from "./basis.js";
 import { type LinearTheory, linearTheory } from "./covariance.js";
 import { hangingTogether } from "./hanging-together.js";
 import { constantSlope, fullBasis, fullJacobian } from "./jacobian.js";
+import { type OneReading, oneReading } from "./one-reading.js";
 import type { Estimate, FittedParameter, Matrix, Nuisance } from "./result.js";
 import { freedomOf, type Settled } from "./settle.js";
 
@@ -32,6 +33,8 @@ export interface Estimates {
   readonly ways: readonly { readonly along: Float64Array; readonly error: number }[];
   /** Standard deviation that uncertain constants bring to each parameter, SI. */
   readonly carried: readonly number[];
+  /** The one reading that rules the fit against all others, if there is one. */
+  readonly ruledBy: OneReading | undefined;
 }
 
 /**
@@ -115,6 +118,7 @@ export function estimatesOf(settled: Settled, stands = settled.problem): Estimat
   });
   const { nuisance, names } = nuisanceOf(problem, at, (k) => finite(Math.sqrt(plainAt(n + k, n + k))));
   return {
+    ruledBy: there ? undefined : oneReading(basis, at.residuals, setup.observations, freedom),
     parameters,
     nuisance,
     correlation: matrix((i, j) => plainAt(i, j) / Math.sqrt(plainAt(i, i) * plainAt(j, j))),

@@ -27,6 +27,7 @@ export function findingsOf(ended: Ended): FitFinding[] {
   return [
     ...howItEnded(ended),
     ...explainsNothing(ended),
+    ...ruledByOne(ended),
     ...contradicted(ended),
     ...lacking(ended),
     ...cannotTell(ended),
@@ -79,6 +80,27 @@ function explainsNothing(e: Ended): FitFinding[] {
   if (e.cancelled || e.setup.blocks.some((b) => b.declared.of || b.censored)) return [];
   const { fitted, flat } = flatLines(e.readings);
   return fitted >= flat && flat > 0 ? [say(e, "explains-nothing", { times: fitted / flat }, [], { fitted, flat })] : [];
+}
+
+/** Does one reading hold the fit against all others? */
+function ruledByOne(e: Ended): FitFinding[] {
+  const { ruledBy } = e.estimates;
+  if (!ruledBy) return [];
+  const { observation, leverage, off } = ruledBy;
+  const block = e.setup.blocks.find((b) => observation < b.from + b.time.length);
+  if (!block) return [];
+  const share = 1 - ruledBy.without / ruledBy.whole;
+  const seconds = block.time[observation - block.from];
+  const time = formatQuantity(seconds, e.setup.network.units.time);
+  const atInjection = e.setup.trials[block.trial].injections.some((i) => i.start === seconds);
+  return [
+    say(e, "one-reading-rules", { key: block.key, time, share, atInjection }, [block.key], {
+      share,
+      leverage,
+      off,
+      seconds,
+    }),
+  ];
 }
 
 /** Combinations that leave the curve as it is, as far as parameters take part. */

@@ -101,10 +101,13 @@ export function fitWith(
   // A look about the optimum may fall upon a better one.
   for (let round = 0; round < mostBetter && result.better && !watch.cancelled(); round++) {
     const lower = descend(end.problem, result.better, fully, watch);
-    const again = lower.sum < end.at.ofAll && settle(setup, end.weights, end.problem, lower, watch);
-    if (!again) break;
+    if (!(lower.sum < end.at.ofAll)) break;
+    // Facts that are held come in anew as the fit settles.
+    const best = { ...lower, x: lower.x.slice(0, setup.coordinates.length) };
+    const again = settle(setup, weights, problem, best, watch);
+    if (!again || again.at.ofAll > end.at.ofAll) break;
     end = again;
-    const better = { ...found, best: lower, optima: [lower, ...found.optima], close: undefined };
+    const better = { ...found, best, optima: [best, ...found.optima], close: undefined };
     result = resultOf(setup, again, better, wanted, watch);
   }
   return { fit: result.fit, problems };

@@ -60,6 +60,27 @@ export function truncationAlarm({ mean, area, stop }: Truncated, time: Unit, isP
   ];
 }
 
+/** Less than this share that passes at once is not worth an alarm. */
+const worthCatching = 0.002;
+
+/** What passes a place without any delay: samples begin too late for it. `share` of all that passes there; `lasting` of the injection, s. */
+export function atOnceAlarms(at: string, share: number, isPulse: boolean, lasting: number): Alarm[] {
+  if (!(share > worthCatching)) return [];
+  const code = "comes-at-once";
+  const passes = `${percent(share)} of the tracer that passes ${at} comes at once`;
+  if (!isPulse || lasting > 0) {
+    const during = isPulse ? ", while it is put in and not after" : "";
+    return [{ code, message: `${passes}${during}`, next: "read fast from the first second of the injection on" }];
+  }
+  return [
+    {
+      code,
+      message: `${passes}: a pulse put in at once has brought it past before a sample is taken, and it is then missing from the recovery`,
+      next: "put the tracer in evenly over a known time (`lasting`), and read fast from its first second on",
+    },
+  ];
+}
+
 /** What the parameters' expected intervals say of the plan. */
 export function parameterAlarms(
   parameters: readonly ExpectedParameter[],

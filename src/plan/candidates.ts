@@ -56,15 +56,18 @@ export function candidatesFor(network: Network, trials: readonly Trial[], fit: F
   };
   const flows = trial.flowLogs
     ? []
-    : ([0.5, 2] as const).map(
-        (by): Candidate => ({
-          ...base,
-          sort: "flow",
-          says: by < 1 ? "a test at half the flow" : "a test at twice the flow",
-          trial: { ...trial, flows: scaledFlows(network, trial, by) },
-          times: scaledTimes(1 / by),
-        }),
-      );
+    : ([0.5, 2] as const)
+        .map((by) => ({ by, flows: scaledFlows(network, trial, by) }))
+        .filter(({ flows: wanted }) => !trials.some((t) => runsAt(network, t, wanted)))
+        .map(
+          ({ by, flows: wanted }): Candidate => ({
+            ...base,
+            sort: "flow",
+            says: `a test at ${by < 1 ? "half" : "twice"} the flow${flowWords(network, wanted)}`,
+            trial: { ...trial, flows: wanted },
+            times: scaledTimes(1 / by),
+          }),
+        );
   return [again, longer, ...flows, ...settings(network, trials, base), ...probes(network, fit, base)];
 }
 
@@ -82,6 +85,24 @@ function scaledFlows(network: Network, trial: Trial, by: number): Map<string, Va
       return [name, { ...of, of: (env) => by * of.of(env), sd: of.sd && ((env) => by * (of.sd?.(env) ?? 0)) }] as const;
     }),
   );
+}
+
+/** A flow this near to one that was tested says nothing new of how the vessel follows its flow. */
+const sameFlow = 0.05;
+
+/** Was a trial run at these flows? */
+const runsAt = (network: Network, trial: Trial, wanted: ReadonlyMap<string, Value>): boolean =>
+  !trial.reacting &&
+  network.feeds.every(({ name, flow }) => {
+    const [had, asked] = [(trial.flows.get(name) ?? flow).of([]), wanted.get(name)?.of([]) ?? 0];
+    return Math.abs(had - asked) <= sameFlow * asked;
+  });
+
+/** " (feed 10 L/min)", where there are not too many to say. */
+function flowWords({ units }: Network, flows: ReadonlyMap<string, Value>): string {
+  const told = [...flows].map(([name, v]) => ({ name, flow: v.of([]), unit: v.unit ?? units.unitFor(v.dimension) }));
+  if (told.length > 2 || told.some(({ flow }) => !Number.isFinite(flow))) return "";
+  return ` (${told.map(({ name, flow, unit }) => `${name} ${formatQuantity(flow, unit, 3)}`).join(", ")})`;
 }
 
 /** Constants that some day set otherwise, or that count turns per time, at half and twice their value. */

@@ -8,7 +8,7 @@ import type { Problem } from "../problems/problem.js";
 import { collector } from "../problems/report.js";
 import { settlingTime } from "../simulate/tracer.js";
 import { tracerPlant } from "../simulate/tracer-plant.js";
-import { injectionAlarms, parameterAlarms, readingAlarms, truncationAlarm } from "./alarms.js";
+import { atOnceAlarms, injectionAlarms, parameterAlarms, readingAlarms, truncationAlarm } from "./alarms.js";
 import { asStep, doseOf, withDose } from "./altered.js";
 import { bandOf } from "./band.js";
 import { bestTimes } from "./best-times.js";
@@ -128,14 +128,14 @@ export function planTest(
   const [first] = passages;
   const meanTime = first?.mean;
   const stopsOf = first ? [3 * first.mean, 5 * first.mean, stop] : [];
-  const truncation =
-    first && isPulse ? [...new Set(stopsOf)].sort((a, b) => a - b).map((t) => truncated(first, t)) : [];
+  const truncation = first && isPulse ? apartStops(stopsOf).map((t) => truncated(first, t)) : [];
   const atStop = first && truncated(first, stop);
   const flow = (at: string): number | undefined => plant.feeds.find((f) => f.name === at)?.flow;
   const alarms = [
     ...(atStop ? truncationAlarm(atStop, network.units.time, isPulse) : []),
     ...readings.flatMap((r, i) => readingAlarms(r, noise[i])),
     ...(meanTime === undefined ? [] : injectionAlarms(trial, flow, meanTime)),
+    ...readings.flatMap((r, i) => atOnceAlarms(r.at, passages[i]?.F[0] ?? 0, isPulse, longestInjection(trial))),
     ...(expected ? parameterAlarms(expected.parameters, expected.confounded) : []),
   ];
   const plan: Plan = {
@@ -172,6 +172,12 @@ function roundUp(seconds: number): number {
 }
 
 /** How tracer comes through to every reading, at the values of the file. */
+/** Ascending; of stops within 1 % of one another the last. */
+const apartStops = (stops: readonly number[]): readonly number[] =>
+  [...stops].sort((a, b) => a - b).filter((t, k, all) => k === all.length - 1 || all[k + 1] > 1.01 * t);
+
+const longestInjection = (trial: Trial): number => Math.max(0, ...trial.injections.map((i) => i.lasting));
+
 function passagesOf(network: Network, liquid: Plant, trial: Trial): (Passage | undefined)[] {
   const step = asStep(trial);
   if (!step) return trial.readings.map(() => undefined);

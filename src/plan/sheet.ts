@@ -15,6 +15,15 @@ interface Part {
   readonly table?: { readonly head: readonly string[]; readonly rows: readonly (readonly string[])[] };
 }
 
+/** A time as a stopwatch shows it, h:min:s, with tenths where it has any; a minus before the injection. */
+export function samplerTime(seconds: number): string {
+  const tenths = Math.round(Math.abs(seconds) * 10);
+  const two = (n: number): string => String(n).padStart(2, "0");
+  const [h, m, s] = [Math.floor(tenths / 36000), Math.floor(tenths / 600) % 60, Math.floor(tenths / 10) % 60];
+  const rest = tenths % 10 === 0 ? "" : `.${tenths % 10}`;
+  return `${seconds < 0 && tenths > 0 ? "\u2212" : ""}${h}:${two(m)}:${two(s)}${rest}`;
+}
+
 /** The sheet that goes to the field, to be printed and filled in by hand. */
 function partsOf(plan: Plan, time: Unit): Part[] {
   const { dose, recommended } = plan;
@@ -37,15 +46,15 @@ function partsOf(plan: Plan, time: Unit): Part[] {
     ["Injection began at (clock)", blank],
     ["Injection ended at (clock)", blank],
     ["Blank before, and at the end", blank],
-    ["Stop not before", formatQuantity(plan.stop, time, 3)],
+    ["Stop not before", `${formatQuantity(plan.stop, time, 3)} (${samplerTime(plan.stop)}) after the injection`],
   ];
   const samples = plan.readings.map(
     (r): Part => ({
       heading: `Samples at ${r.at}`,
       table: {
-        head: [`Time, ${time.name}`, "Clock", `Expected, ${r.unit.name || "1"}`, "Reading", "Remarks"],
+        head: ["After the injection, h:min:s", "Clock", `Expected, ${r.unit.name || "1"}`, "Reading", "Remarks"],
         rows: Array.from(r.times, (t, i) => [
-          formatNumber(inUnit(t, time), 4),
+          samplerTime(t),
           blank,
           formatNumber(inUnit(r.expected[i], r.unit), 3),
           blank,
@@ -96,7 +105,8 @@ export function sheetHtml(plan: Plan, { network, trial }: Titles, time: Unit): s
 <html lang="en"><head><meta charset="utf-8"><title>${escapeText(trial)}</title><style>
 body{font:11pt/1.4 system-ui,sans-serif;margin:1.5cm;color:#111}
 h1{font-size:16pt;margin:0 0 .3em}h2{font-size:12pt;margin:1.2em 0 .4em;break-after:avoid}
-table{border-collapse:collapse;width:100%}th,td{border:1px solid #888;padding:.25em .5em;text-align:left;height:1.6em}
+table{border-collapse:collapse;width:calc(100% - 1px)}th,td{border:1px solid #888;padding:.25em .5em;text-align:left;height:1.6em}
+th:nth-child(2):nth-last-child(4),th:nth-child(4):nth-last-child(2){width:19%}th:nth-child(5){width:28%}
 thead{display:table-header-group}tr{break-inside:avoid}ul{padding-left:1.2em}
 @page{size:A4;margin:1.5cm}@media print{body{margin:0}}
 </style></head><body><h1>${escapeText(trial)}</h1><p>${escapeText(`${network}. ${about}`)}</p>

@@ -35,6 +35,8 @@ export interface StudyReport {
   readonly predictions: readonly Prediction[];
   /** Steady states beside those of the predictions, in sentences; none where none was found. */
   readonly states?: readonly string[];
+  /** When to turn away what leaves, of duties that go on in time, in sentences. */
+  readonly diversion?: readonly string[];
   /** What the liquid is like along the bodies that it flows through, by duty. */
   readonly along: readonly Figure[];
   /** What leaves over time, by duty that changes in time. */

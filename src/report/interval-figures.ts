@@ -28,7 +28,9 @@ function predictionRow(p: Prediction): readonly IntervalRow[] {
   return [{ label: p.duty, value, low, high, text, ...(p.bounds ? { bounds: p.bounds } : {}) }];
 }
 
-const capital = (words: string): string => words.charAt(0).toUpperCase() + words.slice(1);
+/** A sentence begins with a capital; a symbol (t10) stays as it is. */
+const capital = (words: string): string =>
+  /^\p{L}\d/u.test(words) ? words : words.charAt(0).toUpperCase() + words.slice(1);
 
 const mostSpreads = 2;
 const mostDrivers = 6;

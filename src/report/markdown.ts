@@ -14,6 +14,7 @@ export function writeSummary(report: StudyReport): string {
       report.predictions.map((q) => [q.duty, q.name, figureLine(q.name, q.estimate)]),
     ),
     bullets("Steady states", report.states ?? []),
+    bullets("When to divert", report.diversion ?? []),
     table(
       "Changes",
       ["change", "quantity", "value (95 %)", "chance of being better"],

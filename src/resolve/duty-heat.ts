@@ -1,25 +1,33 @@
 import type { Chemistry } from "../model/chemistry.js";
 import type { Duty, Exchanger, HeatDuty, Jacket } from "../model/duty.js";
+import type { Value } from "../model/value.js";
 import type { Report } from "../problems/report.js";
 import { child, entriesOf, itemsOf, type Tree, textOf } from "../read/tree.js";
 import type { Span } from "../text/source.js";
 import { dimensions } from "../units/dimension.js";
 import { aboveZero } from "./sign.js";
+import { unknownValue } from "./unknown.js";
 import { emptyScope, resolveTemperature, resolveValue } from "./value.js";
 
-/** `adiabatic`, or jackets by place. Undefined once a problem is reported. */
-export function resolveHeat(node: Tree, exchange: Tree | undefined, report: Report): HeatDuty | undefined {
-  const entries = entriesOf(node);
-  const items = itemsOf(exchange);
-  const exchangers = items.flatMap((item) => resolveExchanger(item, report) ?? []);
-  const jackets = entries.flatMap(({ key, value }): [string, Jacket][] => {
+/** `adiabatic`, or jackets by place. What is wrong is reported, and unknown: its place can still be looked up. */
+export function resolveHeat(node: Tree, exchange: Tree | undefined, report: Report): HeatDuty {
+  const exchangers = itemsOf(exchange).flatMap((item) => resolveExchanger(item, report) ?? []);
+  const jackets = entriesOf(node).map(({ key, value }): [string, Jacket] => {
     const temperature = resolveTemperature(child(value, "jacket"), emptyScope, report);
     const conductance = resolveValue(child(value, "conductance"), dimensions["heat conductance"], emptyScope, report);
-    if (!aboveZero(`the jacket of '${key.text}'`, temperature, false, report)) return [];
-    if (!aboveZero(`the conductance of '${key.text}'`, conductance, true, report)) return [];
-    return temperature && conductance ? [[key.text, { at: key.at, temperature, conductance }]] : [];
+    aboveZero(`the jacket of '${key.text}'`, temperature, false, report);
+    aboveZero(`the conductance of '${key.text}'`, conductance, true, report);
+    const known = (value: Value | undefined, kind: keyof typeof dimensions): Value =>
+      value ?? unknownValue(key.at, dimensions[kind]);
+    return [
+      key.text,
+      {
+        at: key.at,
+        temperature: known(temperature, "temperature"),
+        conductance: known(conductance, "heat conductance"),
+      },
+    ];
   });
-  if (jackets.length < entries.length || exchangers.length < items.length) return undefined;
   for (const side of ["feed", "outlet"] as const) {
     exchangers.forEach((e, k) => {
       if (exchangers.some((other, j) => j < k && other[side] === e[side])) {

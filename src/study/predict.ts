@@ -1,9 +1,11 @@
 import type { Duty } from "../model/duty.js";
 import { predict } from "../reaction/prediction.js";
-import { withTimes } from "../transient/in-time.js";
+import { changes } from "../transient/course-line.js";
+import { asksForTime, withTimes } from "../transient/in-time.js";
 import { betterIs } from "./direction.js";
+import { diversionWindows } from "./diversion.js";
 import { overTime } from "./in-time.js";
-import { noRow, plantOf } from "./operate.js";
+import { noRow, plantOf, type Row } from "./operate.js";
 import { otherStates } from "./other-states.js";
 import type { Bounds, Prediction, Ranked } from "./result.js";
 import type { Sample } from "./sample.js";
@@ -20,6 +22,7 @@ export function predictDuty(ranked: Ranked, { operation, rows, values }: Sample)
   const spreads = spreadsOf(operation, ranked.fit, rows, values);
   const states = otherStates(operation, noRow);
   const course = overTime(plant, duty);
+  const windows = asksForTime(duty) && changes(duty) ? diversionWindows(operation, someRows(rows), 0) : [];
   return figures.map((f, k): Prediction => {
     const b = bounds[k];
     const within: Bounds | undefined = b && {
@@ -41,11 +44,16 @@ export function predictDuty(ranked: Ranked, { operation, rows, values }: Sample)
       spread: spreads[k],
       steady: state,
       states,
+      diversion: windows.find((w) => w.line === duty.report[k]),
       course,
       plant,
     };
   });
 }
+
+/** Each row is a run in time. */
+const mostRuns = 100;
+const someRows = (rows: readonly Row[]): readonly Row[] => (rows.length > 0 ? rows.slice(0, mostRuns) : [noRow]);
 
 /** Fewer draws have no end that is worth telling. */
 const fewest = 20;

@@ -12,6 +12,8 @@ import type { SteadyState } from "../reaction/steady.js";
 import type { Unit } from "../units/unit.js";
 import type { Across } from "./across.js";
 import type { AimResult } from "./aim.js";
+import type { DiversionWindow } from "./diversion.js";
+import type { FineCurve } from "./fine-curves.js";
 import type { InTime } from "./in-time.js";
 import type { Nested } from "./nested.js";
 import type { OtherStates } from "./other-states.js";
@@ -47,6 +49,8 @@ export interface StudyResult {
   readonly sameCurves: readonly SameCurve[];
   /** Further tests of the best rival, the most telling first. */
   readonly further: readonly FurtherTest[];
+  /** Fitted curves of the best rival between the samples of readings with few of them, by the reading's key. */
+  readonly fine: ReadonlyMap<string, FineCurve>;
   /** Of the best rival. */
   readonly residence: Residence | undefined;
   /** Draws that intervals rest on. */
@@ -89,6 +93,8 @@ export interface Prediction {
   readonly steady: SteadyState;
   /** Further steady states; undefined where one was found and nothing is against it. */
   readonly states: OtherStates | undefined;
+  /** Of a time beyond a limit in a duty that changes: when to turn away what leaves, over the draws. */
+  readonly diversion: DiversionWindow | undefined;
   /** What leaves in time, where the duty changes in time. */
   readonly course: InTime | undefined;
   /** The vessel as it is operated there. */

@@ -13,6 +13,7 @@ import { aimAsked, sweepAsked } from "./asked.js";
 import { changeOutcomes } from "./compare.js";
 import { decisionsOf } from "./decide.js";
 import { drawsOf, type RivalDraws } from "./draws-of.js";
+import { fineCurves } from "./fine-curves.js";
 import { nestedTests } from "./nested.js";
 import { operationOf } from "./operation.js";
 import { predictDuty } from "./predict.js";
@@ -136,6 +137,7 @@ export function runStudy(study: Study, options: StudyOptions = {}): StudyResult 
     nested: cancelled() ? [] : nestedTests(fittedRivals(ranking), study.trials, study.seed),
     sameCurves: sameCurvesOfBest,
     further,
+    fine: best?.fit && !cancelled() ? fineCurves(best.rival.network, study.trials, best.fit) : new Map(),
     residence: best?.plant && !cancelled() ? residenceOf(best.plant, draws.get(best.rival)?.settings ?? []) : undefined,
     draws: Math.min(count, ...[...draws.values()].map((d) => d.settings.length)),
     stopped: cancelled() ? "cancelled" : undefined,

@@ -1,6 +1,7 @@
 import type { Plant } from "../compile/plant.js";
 import { type Conserved, imbalance } from "../reaction/conserved.js";
 import { passTube } from "../reaction/tube.js";
+import { madeOnTheWay } from "./made.js";
 import type { Run } from "./run.js";
 import { Sampled } from "./sampled.js";
 import type { Signal } from "./signal.js";
@@ -53,11 +54,9 @@ export function amountsOf(run: Run, plant: Plant): Amounts {
     for (let i = 0; i < width; i++) {
       before[i] += volume * inside.before[i];
       held[i] += volume * inside.now[i];
-      made[i] += volume * (inside.now[i] - inside.before[i]);
     }
-    // What reaction made on the way is what left and is held, less what entered and was held.
-    add(made, passed(run.signal(node), node));
-    add(made, -passed(run.entering(node), node));
+    const onTheWay = madeOnTheWay(run, node);
+    for (let i = 0; i < width; i++) made[i] += onTheWay ? onTheWay[i] : Number.NaN;
   }
   return { fed, left, made, before, held };
 }

@@ -34,6 +34,10 @@ const coursesOf = (duty: Duty): readonly FeedCourse[] => [
 /** True where a duty has something that changes in time. */
 export const changes = (duty: Duty): boolean => coursesOf(duty).length > 0;
 
+/** Is everything that changes in the end as it was before? */
+export const comesBack = (duty: Duty): boolean =>
+  changes(duty) && coursesOf(duty).every((course) => course.is === "upset" && course.lasting !== undefined);
+
 /** When what is fed changes for the last time, s; 0 where it does not. */
 export function lastChange(duty: Duty): number {
   return coursesOf(duty).reduce((late, course) => {

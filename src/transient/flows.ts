@@ -1,3 +1,4 @@
+import { compiler } from "../compile/compile.js";
 import { Part, type Plant } from "../compile/plant.js";
 import type { Duty } from "../model/duty.js";
 import { RefusedError } from "../problems/refused.js";
@@ -27,6 +28,28 @@ export function flowsOf(plant: Plant, duty: Duty, settings: DutySettings): FlowC
   const feeds = courses.map(([feed]) => feed);
   return courseThrough(plant, feeds, rows, (made) => requireOnlyFlows(plant, made));
 }
+
+/** The plant as it is once flows have changed for good; as it is before where they come back, or end. */
+export function plantAfter(plant: Plant, duty: Duty): Plant {
+  const settings: Record<string, number> = { ...plant.settings };
+  let other = false;
+  for (const [feed, course] of duty.flowCourses ?? []) {
+    const last =
+      course.is === "logged"
+        ? course.values[course.values.length - 1]
+        : course.lasting === undefined
+          ? course.to.of([])
+          : undefined;
+    const before = plant.feeds.find((f) => f.name === feed)?.flow ?? 0;
+    if (last === undefined || !(last > slowest * before)) continue;
+    settings[`${feed}.flow`] = last;
+    other = true;
+  }
+  return (other && compiler(plant.network).compile(settings).plant) || plant;
+}
+
+/** A feed that goes on at less than this part of what it brought counts as ended. */
+const slowest = 0.01;
 
 /** What a body holds, and how it is passed, must not hang on the flow. @throws RefusedError */
 function requireOnlyFlows(plant: Plant, made: Plant): void {

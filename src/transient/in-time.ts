@@ -3,8 +3,10 @@ import type { Duty } from "../model/duty.js";
 import type { DutySettings } from "../reaction/conditions.js";
 import type { Figure } from "../reaction/figures.js";
 import { settlingTime } from "../simulate/tracer.js";
-import { lastChange } from "./course-line.js";
+import { comesBack, lastChange } from "./course-line.js";
 import { transientFigures } from "./figures.js";
+import { plantAfter } from "./flows.js";
+import { backAt } from "./passage.js";
 import { type Transient, transient } from "./transient.js";
 
 /** Fine enough for draws: far finer than what is drawn. */
@@ -18,10 +20,33 @@ const leastMeans = 3;
  * least three mean times.
  */
 export function endOf(plant: Plant, duty: Duty): number {
-  const fed = plant.feeds.filter((f) => f.flow > 0);
-  const mean = plant.volume.active / fed.reduce((sum, f) => sum + f.flow, 0);
-  const least = Number.isFinite(mean) ? leastMeans * mean : 0;
-  return lastChange(duty) + Math.max(least, ...fed.map((f) => settlingTime(plant, f.name)));
+  const after = [plant, plantAfter(plant, duty)].map((then) => {
+    const fed = then.feeds.filter((f) => f.flow > 0);
+    const mean = then.volume.active / fed.reduce((sum, f) => sum + f.flow, 0);
+    const least = Number.isFinite(mean) ? leastMeans * mean : 0;
+    return Math.max(least, ...fed.map((f) => settlingTime(then, f.name)));
+  });
+  return lastChange(duty) + Math.max(...after);
+}
+
+/** Of the way to the end that is left empty behind what comes back. */
+const margin = 0.1;
+
+/**
+ * s: up to when a duty is worth looking at: where all that changes comes back, until everything that leaves is within 1 % of its
+ * height of where it was, and what a figure asks for is over; else its end.
+ */
+export function worthSeeing(plant: Plant, duty: Duty): number {
+  const end = endOf(plant, duty);
+  if (duty.contents || !comesBack(duty)) return end;
+  const run = roughRun(plant, duty);
+  if (run.stopped) return end;
+  const size = run.species.length + (duty.heat ? 1 : 0);
+  const back = run.outlets
+    .filter((o) => o.flow > 0)
+    .flatMap(({ name }) => Array.from({ length: size }, (_, i) => backAt(run.look(name), size, i, end)));
+  const over = transientFigures(plant, duty, run).flatMap((f) => (f.beyond?.spans ?? []).map(({ to }) => to));
+  return Math.min(end, (1 + margin) * Math.max(lastChange(duty), ...back, ...over));
 }
 
 /** True where a duty reports something that only time shows. */

@@ -66,3 +66,20 @@ export function passageOf(look: Look, species: number, component: number, until:
   const t99 = late < 0 ? 0 : late === seen.length - 1 ? until : between(late, nearLast);
   return { first, last, lowest, highest, t1, t99 };
 }
+
+/** When something that comes back is last more than 1 % of its height away from where it was, s; 0 where it does not move. */
+export function backAt(look: Look, size: number, component: number, until: number): number {
+  const row = new Float64Array(size);
+  look.at(0, row, -1);
+  const before = row[component];
+  const seen = smooth(look, until).flatMap(({ from, to }) =>
+    Array.from({ length: parts + 1 }, (_, k): [number, number] => {
+      const t = k === parts ? to : from + ((to - from) * k) / parts;
+      look.at(t, row, k === parts ? -1 : 1);
+      return [t, Math.abs(row[component] - before)];
+    }),
+  );
+  const height = seen.reduce((most, [, away]) => Math.max(most, away), 0);
+  if (!(height > 1e-6 * Math.abs(before))) return 0;
+  return seen.findLast(([, away]) => away > 0.01 * height)?.[0] ?? 0;
+}

@@ -184,7 +184,7 @@ export class Run {
   }
 
   /** Times at which what enters a node may jump or kink. */
-  private entries(node: number): Float64Array {
+  entries(node: number): Float64Array {
     const { scene, feeds } = this.ask;
     const times = [...scene.blends.sources(node)].flatMap((source) =>
       source < scene.sort.length
@@ -195,7 +195,7 @@ export class Run {
   }
 
   /** What entered a node before, in balance; nothing where it starts with what it holds. */
-  private enteringBefore(node: number): Float64Array {
+  enteringBefore(node: number): Float64Array {
     const { scene, start, feeds } = this.ask;
     const mixture = new Float64Array(scene.width);
     if (start.is !== "steady") return mixture;

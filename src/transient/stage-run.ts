@@ -100,7 +100,8 @@ export function stageRun(
     for (let p = 0; p < places; p++) {
       const state = p === 0 ? y : moved(y, z[p - 1]);
       for (let k = 0; k < wanted.length; k++) stage.outflow(wanted[k], state, rows[p], k * width);
-      // What reaction made is what the rates that the step was taken with changed, less what flows did.
+      // What reaction made is what the rates that the step was taken with changed, less what flows did. The rates themselves will
+      // not do: where fast ones cancel, the last digits of a state move them by more than what they make.
       if (p > 0 && ask.counted) {
         const at = from + t + h * basis.places[p];
         stage.addNetFlow(at, state, side(at), -h * basis.whole[p], made);

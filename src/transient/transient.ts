@@ -82,17 +82,23 @@ export interface Look {
   stretch(t: number): number;
 }
 
+/** Balances that are off by more are not closed, as a share. */
+export const closes = 1e-6;
+
 /** Amounts over the whole run by species (mol, kg or a number, as the species is counted). */
 export interface TransientBalance extends Amounts {
   /**
-   * (fed + held before + made - left - held) as a share of the largest of them; 0 is a closed balance. What is made is counted
-   * body by body as what the body changes: this checks what passes between bodies, `conserved` what happens in them, too.
+   * (fed + held before + made - left - held) as a share of the largest of them; 0 is a closed balance. What parcels make is
+   * counted from the rates along their ways, and asks nothing of what is held or leaves; what cells make is what each step
+   * changed, less what flowed.
    */
   readonly closure: Float64Array;
   /** How far sums that no reaction changes (elements, say) fail to close, the largest, as a share. */
   readonly conserved: number;
   /** The same as `closure` of heat, where it is balanced. */
   readonly heat: number | undefined;
+  /** The largest of all these; above `closes` the run is not to be relied on. */
+  readonly off: number;
 }
 
 /**
@@ -246,6 +252,8 @@ function balanceOf(run: Run, plant: Plant, { species, scale, numbers }: Conditio
   const n = species.length;
   const toSi = (x: Float64Array): Float64Array => Float64Array.from(species, (_, i) => scale[i] * x[i]);
   const closure = closureOf(amounts);
+  const conserved = conservedClosure(conservedBy(numbers, n), amounts);
+  const worst = closure.reduce((most, c) => (Math.abs(c) <= most ? most : Math.abs(c)), conserved);
   return {
     fed: toSi(amounts.fed),
     left: toSi(amounts.left),
@@ -254,7 +262,8 @@ function balanceOf(run: Run, plant: Plant, { species, scale, numbers }: Conditio
     held: toSi(amounts.held),
     closure: closure.slice(0, n),
     heat: closure[n],
-    conserved: conservedClosure(conservedBy(numbers, n), amounts),
+    conserved,
+    off: Number.isNaN(worst) ? Number.POSITIVE_INFINITY : worst,
   };
 }
 

@@ -36,6 +36,8 @@ describe("plan", () => {
     const md = await backmix([...command, "--samples", "20", "-o", "sheet.md"]);
     const sheet = md.written.get("sheet.md") ?? "";
     expect(sheet).toContain("## Samples at product");
+    expect(sheet).toMatch(/^\| −0:00:\d\d \|/m);
+    expect(sheet).toMatch(/^\| \d+:\d\d:\d\d \|/m);
     expect(sheet.split("\n").filter((l) => /^\| [−\d]/.test(l)).length).toBeGreaterThanOrEqual(28);
     expect(sheet).toContain("| Permission in writing from |");
     const html = await backmix([...command, "-o", "sheet.html"]);

@@ -1,4 +1,5 @@
 import { describe, expect, test } from "vitest";
+import { candidatesFor } from "../../src/plan/candidates.js";
 import { furtherTests } from "../../src/plan/further.js";
 import { networkOf } from "../fit/load.js";
 import { every, fitted, noisy, parameterOf, synthetic } from "../fit/synthetic.js";
@@ -63,12 +64,25 @@ describe("what further test would tell", () => {
     const tests = furtherTests(corner, [trial], fit, ["corner", "renewal"]);
     const said = tests.map((t) => t.says);
     expect(said).toContain("a test with speed at 30 1/min");
-    expect(said).toContain("a test at half the flow");
+    expect(said).toContain("a test at half the flow (feed 5 L/min)");
     expect(said).toContain("the same test, read twice as long");
     const again = tests.find((t) => t.sort === "again");
     // Twice the information: 1 / sqrt(2) of the width.
     expect(again?.remains).toBeGreaterThan(0.69);
     expect(again?.remains).toBeLessThan(0.76);
     expect(tests.filter((t) => t.remains < (again?.remains ?? 0)).length).toBeGreaterThan(0);
+  });
+
+  test("a flow that was tested already is not proposed again", () => {
+    const truth = { corner: 0.03, renewal: 3e-5 };
+    const at = { injection: "{at: feed, pulse: 50 g}", at: "out", times: every(1, 60), noise: noisy(1, 0.004) };
+    const slow = synthetic(corner, truth, { ...at, title: "Slow", flows: "{feed: 5 L/min}" });
+    const usual = synthetic(corner, truth, { ...at, title: "Usual" });
+    const flows = (trials: (typeof usual)[]) =>
+      candidatesFor(corner, trials, { values: truth, readings: [] })
+        .filter((c) => c.sort === "flow")
+        .map((c) => c.says);
+    expect(flows([slow, usual])).toEqual(["a test at twice the flow (feed 20 L/min)"]);
+    expect(flows([usual, slow])).toEqual(["a test at half the flow (feed 2.5 L/min)"]);
   });
 });

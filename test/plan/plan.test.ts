@@ -9,6 +9,7 @@ import { parseTrial } from "../../src/parse/trial.js";
 import { asLogged } from "../../src/plan/expected.js";
 import { planTest } from "../../src/plan/plan.js";
 import type { Plan } from "../../src/plan/result.js";
+import { samplerTime } from "../../src/plan/sheet.js";
 
 const networkOf = (text: string): Network => {
   const { document, problems } = parseNetwork(text);
@@ -194,4 +195,36 @@ compartments:
   expect(
     planTest(flask, document as Trial, { samples: 20, until: 3600 }).plan?.readings[0].times.length,
   ).toBeGreaterThan(20);
+});
+
+test("times on the sheet are read from a stopwatch: no second is lost or added", () => {
+  expect([-50, 0, 0.5, 59.96, 60, 3599.99, 5025, 240 * 3600].map(samplerTime)).toEqual([
+    "−0:00:50",
+    "0:00:00",
+    "0:00:00.5",
+    "0:01:00",
+    "0:01:00",
+    "1:00:00",
+    "1:23:45",
+    "240:00:00",
+  ]);
+});
+
+describe("what passes at once", () => {
+  const short = networkOf(`network: Tank with a shortcut
+format: 1
+feeds: {feed: {flow: 1 L/min, to: {product: 10 %, tank: rest}}}
+compartments: {tank: {kind: stirred, volume: 100 L, to: product}}
+outlets: [product]
+`);
+  const alarm = (injection: string) =>
+    planOf(short, draftOf(injection, "noise: {floor: 0.005 g/L}")).alarms.find((a) => a.code === "comes-at-once");
+
+  test("is an alarm that says how much, and that a sudden pulse hides it", () => {
+    expect(alarm("{at: feed, pulse: 100 g}")?.message).toMatch(
+      /^10 % of the tracer that passes .* missing from the recovery$/,
+    );
+    expect(alarm("{at: feed, pulse: 100 g, lasting: 5 min}")?.message).toContain("while it is put in");
+    expect(planOf(tank, plain).alarms.map((a) => a.code)).not.toContain("comes-at-once");
+  });
 });

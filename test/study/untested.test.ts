@@ -51,4 +51,23 @@ describe("a study without trials", () => {
     expect(out + err).not.toContain("converge");
     expect(out).not.toContain("no fit");
   });
+
+  test("tells from when to when to divert, over the draws, where a duty goes on in time", async () => {
+    const upset = files["duty.yaml"]
+      .replace("A: 1 mol/L", "A: {from: 1 mol/L, to: 2 mol/L, start: 10 min, lasting: 20 min}")
+      .replace("report: [", "report: [time A at out above 0.7 mol/L, ");
+    const { document } = await json(["study", "study.yaml"], { files: { ...files, "duty.yaml": upset } });
+    // From 0.5 towards 1 mol/L and back, both at 0.2 1/min.
+    const begins = 10 + Math.log(0.5 / 0.3) / 0.2;
+    const ends = 30 + Math.log((0.5 * (1 - Math.exp(-4))) / 0.2) / 0.2;
+    const window = at(document, "predictions.0.diversion");
+    expect(at(document, "predictions.0.value")).toBeCloseTo(ends - begins, 3);
+    expect(at(window, "touched")).toBe(1);
+    const [from, to] = [at(window, "from.value") as number, at(window, "to.value") as number];
+    expect(begins - from).toBeGreaterThan(0.2);
+    expect(begins - from).toBeLessThan(1.5);
+    expect(to - ends).toBeGreaterThan(0.4);
+    expect(to - ends).toBeLessThan(3);
+    expect(at(window, "volume.value")).toBeCloseTo(to - from, 6);
+  });
 });

@@ -123,7 +123,7 @@ describe("a duty in time", () => {
     if (!balance) throw new Error("no balance");
     const clock = clockFrom({ until: "60 min" }, plant.network.units.time, () => 3600);
     expect(transientText(plant, duty, run, [], clock, [])).not.toContain("warning");
-    const off = { ...run, balance: { ...balance, conserved: 5e-4 } };
+    const off = { ...run, balance: { ...balance, conserved: 5e-4, off: 5e-4 } };
     expect(transientText(plant, duty, off, [], clock, [])).toContain("The balances of this run are off by 0.0005");
   });
 

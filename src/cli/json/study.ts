@@ -1,5 +1,7 @@
 import { explainsNothing } from "../../fit/explains-nothing.js";
+import type { Network } from "../../model/network.js";
 import type { Asked } from "../../model/study.js";
+import type { DiversionWindow } from "../../study/diversion.js";
 import type {
   Answered,
   Bounds,
@@ -95,6 +97,7 @@ function predictionJson({
   bounds,
   spread,
   states,
+  diversion,
 }: Prediction): object {
   return {
     duty: duty.title,
@@ -106,8 +109,19 @@ function predictionJson({
     bounds: bounds ? boundsJson(bounds, unit) : null,
     ...spreadJson(spread, unit),
     ...(states ? { otherStates: otherStatesJson(states, []) } : {}),
+    ...(diversion ? { diversion: diversionJson(diversion, unit, rival.network) } : {}),
   };
 }
+
+/** When to turn away what leaves. */
+const diversionJson = ({ window, draws }: DiversionWindow, time: Unit, { units }: Network): object => ({
+  draws,
+  touched: window?.touched ?? 0,
+  stillAtEnd: window?.stillAtEnd ?? 0,
+  from: quantity(window?.from, time),
+  to: quantity(window?.to, time),
+  volume: quantity(window?.volume ?? 0, units.unitFor(dimensions.volume)),
+});
 
 /** What holds the variance: shares are fractions. */
 function spreadJson(spread: Spread | undefined, unit: Unit): object {

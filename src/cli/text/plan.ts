@@ -1,5 +1,6 @@
 import type { ExpectedParameter } from "../../plan/expected.js";
 import type { Plan, PlannedReading } from "../../plan/result.js";
+import { samplerTime } from "../../plan/sheet.js";
 import { formatNumber, formatQuantity } from "../../units/format.js";
 import { inUnit, type Unit } from "../../units/unit.js";
 import { errorText, supported } from "./digits.js";
@@ -83,7 +84,7 @@ function readingText(r: PlannedReading, time: Unit): string {
     ]);
   if (r.best) rows.push(["efficiency", `${percent(r.best.efficiency)} of the best times for these parameters`]);
   const before = r.times.filter((t) => t <= 0);
-  const after = [...r.times].filter((t) => t > 0).map((t) => formatNumber(inUnit(t, time), 4));
+  const after = [...r.times].filter((t) => t > 0).map(samplerTime);
   const shown = after.length > 60 ? [...after.slice(0, 5), "…", ...after.slice(-3)] : after;
   const best = r.best ? groups([...r.best.times].map((t) => inUnit(t, time))) : "";
   return blocks(
@@ -92,7 +93,7 @@ function readingText(r: PlannedReading, time: Unit): string {
     [
       wrap(
         "  samples  ",
-        `${before.length} before the injection, then ${after.length} at ${shown.join(", ")} ${time.name}`,
+        `${before.length} before the injection, then ${after.length} at ${shown.join(", ")} (h:min:s)`,
       ),
       ...(best ? [wrap("  best     ", `${best} ${time.name}`)] : []),
     ].join("\n"),

@@ -5,6 +5,7 @@ import { chance, figureLine } from "../../report/digits.js";
 import type { AnswerLine } from "../../report/input.js";
 import { reportAims } from "../../report/study/asked.js";
 import { decisionWords } from "../../report/study/decision-words.js";
+import { studyDiversionWords } from "../../report/study/diversion-words.js";
 import { regulatedCaution, regulatedLines } from "../../report/study/regulated-words.js";
 import { studyStatesWords } from "../../report/study/states-words.js";
 import { isUntested } from "../../report/study/untested.js";
@@ -30,9 +31,7 @@ export function studyText(result: StudyResult, answer: readonly AnswerLine[], re
     rankingTable(result),
     (result.across?.findings ?? []).map((f) => wrap(`  trials together, ${f.at}: `, f.message)).join("\n"),
     predictionsTable(result),
-    studyStatesWords(result)
-      .map((says) => wrap("  ", says))
-      .join("\n"),
+    [...studyStatesWords(result), ...studyDiversionWords(result)].map((says) => wrap("  ", says)).join("\n"),
     changesTable(result),
     decisionWords(result)
       .map((says) => wrap("  ", says))

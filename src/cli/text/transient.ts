@@ -5,7 +5,7 @@ import { speciesUnits } from "../../reaction/species-units.js";
 import { dutyCautions } from "../../report/duty-cautions.js";
 import type { TransientFigure } from "../../transient/figures.js";
 import { passageOf } from "../../transient/passage.js";
-import type { Transient } from "../../transient/transient.js";
+import { closes, type Transient } from "../../transient/transient.js";
 import { dimensions, times } from "../../units/dimension.js";
 import { formatNumber, formatQuantity } from "../../units/format.js";
 import { inUnit } from "../../units/unit.js";
@@ -123,22 +123,19 @@ function rangeText({ range, ...figure }: TransientFigure, { unit }: Clock): stri
   return `${at("lowest")}, ${at("highest")}`;
 }
 
-/** Balances that are off by more are said to be. */
-const enough = 1e-6;
-
 function balanceText({ balance }: Transient): string {
   if (!balance) return "";
   const worst = balance.closure.reduce((most, c) => Math.max(most, Math.abs(c)), 0);
   const heat = balance.heat === undefined ? "" : `, heat to ${formatNumber(Math.abs(balance.heat), 1)}`;
-  const off = Math.max(worst, balance.conserved, Math.abs(balance.heat ?? 0));
+  const { off } = balance;
   return blocks(
     pairs([
       [
         "balances",
-        `between bodies every species closes to ${formatNumber(worst, 1)}; over all, what no reaction changes to ${formatNumber(balance.conserved, 1)}${heat}`,
+        `every species closes to ${formatNumber(worst, 1)}, what no reaction changes to ${formatNumber(balance.conserved, 1)}${heat}`,
       ],
     ]),
-    off > enough
+    off > closes
       ? wrap(
           "  warning  ",
           `The balances of this run are off by ${formatNumber(off, 1)}, where 1e-9 is usual: amounts, and times beyond a limit, may be wrong by as much. Do not rely on them; please report the files.`,

@@ -87,6 +87,16 @@ export const runEntries = {
     fix: "take no number from it: check dose, units, time zero and which outlet was read; `scale: free` shows whether the shape alone would fit",
     example: { times: 3.2 },
   }),
+  "one-reading-rules": entry({
+    severity: "warning",
+    says: (d: { key: string; time: string; share: number; atInjection: boolean }) =>
+      `one reading holds the fit against all others: without that of '${d.key}' at ${d.time}${d.atInjection ? ", the very moment of an injection," : ""} ${Math.min(99, Math.round(100 * d.share))} % of the misfit would be gone`,
+    fix: (d) =>
+      d.atInjection
+        ? `the model jumps at that moment, and a reading taken just before it does not: leave it out (\`leave-out: [{from: ${d.time}, to: ${d.time}, because: …}]\`) and fit again; take no number from this fit`
+        : `look at the log there (an electric spike, a wrong clock); if there is a reason, leave it out (\`leave-out: [{from: ${d.time}, to: ${d.time}, because: …}]\`) and fit again; take no number from this fit`,
+    example: { key: "Salt pulse/product", time: "0 min", share: 0.98, atInjection: true },
+  }),
   "too-few-points": entry({
     severity: "error",
     says: (d: { points: number; unknowns: number }) =>

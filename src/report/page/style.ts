@@ -2,8 +2,8 @@ import { fontFamily, themeVariables } from "../../svg/theme.js";
 
 /** What fades at the side of something that scrolls, as long as there is more on that side. */
 const scrollShadow =
-  "background:linear-gradient(90deg,var(--bm-paper) 45%,transparent) 0 0/2.6rem 100% no-repeat local," +
-  "linear-gradient(270deg,var(--bm-paper) 45%,transparent) 100% 0/2.6rem 100% no-repeat local," +
+  "background:linear-gradient(90deg,var(--bm-paper) 45%,transparent) left -2px top 0/2.6rem 100% no-repeat local," +
+  "linear-gradient(270deg,var(--bm-paper) 45%,transparent) right -2px top 0/2.6rem 100% no-repeat local," +
   "linear-gradient(90deg,var(--bm-hatch),transparent) 0 0/.8rem 100% no-repeat scroll," +
   "linear-gradient(270deg,var(--bm-hatch),transparent) 100% 0/.8rem 100% no-repeat scroll";
 
@@ -66,15 +66,14 @@ dd{margin:0;max-width:46rem}
 .finding p:first-child{font-weight:700}
 code{font:.85em ui-monospace,Menlo,Consolas,monospace;overflow-wrap:anywhere}
 footer{margin-top:3rem;font-size:.85rem}
-@media (min-width:90rem){
-body{max-width:84rem}
-}
 @media (max-width:40rem){
 body{padding:1.2rem .9rem 3rem}
 .wide .drawing{overflow-x:auto}
 .wide .drawing svg{overflow:hidden;max-width:none!important;min-width:34rem;width:34rem}
 .wide figcaption::before{content:"The picture goes on sideways. "}
 th,td{padding-right:.8rem}
+tbody th{min-width:8rem}
+thead th.number{min-width:4.5rem}
 .answer{padding-left:.8rem}
 .answer dl{display:block}
 .answer dt{margin-top:.6rem}

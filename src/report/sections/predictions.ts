@@ -6,7 +6,7 @@ import { estimateRow, grouped, withUnit } from "./rows.js";
 
 /** What the vessel makes under each duty: value, interval, where mixing would put it. */
 export function predictionsSection(report: StudyReport): Html {
-  const { predictions, states = [], along } = report;
+  const { predictions, states = [], diversion = [], along } = report;
   const driven = predictions.some((p) => (p.drivers?.length ?? 0) > 0);
   const rows = predictions.map((p) => {
     const { bounds } = p;
@@ -27,6 +27,7 @@ export function predictionsSection(report: StudyReport): Html {
     table("Predictions", columns, rows),
     ...boundsWords(predictions).map((says) => paragraph(says)),
     states.length > 0 ? `<h3>Steady states</h3>${list(states)}` : "",
+    diversion.length > 0 ? `<h3>When to divert</h3>${list(diversion)}` : "",
     figures([...spreadFigures(report), ...along]),
   ]);
 }

@@ -7,6 +7,7 @@ import { reportAims, sweepFigures } from "./asked.js";
 import { changeRows, severalSurvive } from "./change-rows.js";
 import { dataQuality } from "./data.js";
 import { decisionWords } from "./decision-words.js";
+import { studyDiversionWords } from "./diversion-words.js";
 import { parameterEstimate } from "./estimate.js";
 import { curveFigures, rivalFigures } from "./figures.js";
 import { dataRemarks, findingsOf, notSupportedOf } from "./findings.js";
@@ -50,6 +51,7 @@ export function reportOf(result: StudyResult, provenance: Omit<Provenance, "seed
     residence: result.residence && best ? residenceFigures(result.residence, best.rival.network.units.time) : [],
     predictions: predictionRows(result),
     states: studyStatesWords(result),
+    diversion: studyDiversionWords(result),
     along: alongFigures(predicted),
     inTime: inTimeFigures(predicted),
     regulated: result.regulated.map(({ rival, duty, figures, lower }) => ({

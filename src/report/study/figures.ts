@@ -1,8 +1,9 @@
 import { plotCurves } from "../../draw/curves.js";
-import { plotFit } from "../../draw/fit-curve.js";
+import { type FitReading, plotFit } from "../../draw/fit-curve.js";
 import { columnWidth } from "../../draw/picture.js";
 import type { FittedReading } from "../../fit/result.js";
 import { readingLabel, type Trial } from "../../model/trial.js";
+import type { FineCurve } from "../../study/fine-curves.js";
 import type { StudyResult } from "../../study/result.js";
 import { differenceInUnit, inUnit, type Unit } from "../../units/unit.js";
 import type { Figure } from "../input.js";
@@ -19,7 +20,10 @@ export function curveFigures(result: StudyResult): Figure[] {
     if (readings.length === 0) return [];
     const { time } = best.rival.network.units;
     const start = trial.injections[0]?.start ?? 0;
-    const drawn = [fitFigure(trial, readings, time, start, k), residualFigure(fit, trial, readings, time, k, first)];
+    const drawn = [
+      fitFigure(trial, readings, result.fine, time, start, k),
+      residualFigure(fit, trial, readings, time, k, first),
+    ];
     first = false;
     return drawn;
   });
@@ -35,7 +39,14 @@ export function rivalFigures(result: StudyResult): Figure[] {
   });
 }
 
-function fitFigure(trial: Trial, readings: readonly FittedReading[], time: Unit, start: number, k: number): Figure {
+function fitFigure(
+  trial: Trial,
+  readings: readonly FittedReading[],
+  fine: StudyResult["fine"],
+  time: Unit,
+  start: number,
+  k: number,
+): Figure {
   const unit = readings[0].unit;
   const made = plotFit(
     {
@@ -50,6 +61,11 @@ function fitFigure(trial: Trial, readings: readonly FittedReading[], time: Unit,
           measured: r.measured.map((c) => inUnit(c, unit)),
           fitted: r.fitted.map((c) => inUnit(c, unit)),
           residual: r.residual.map((c) => differenceInUnit(c, unit)),
+          ...fineOf(
+            fine.get(r.key),
+            (t) => inUnit(t - start, time),
+            (c) => inUnit(c, unit),
+          ),
           leftOut: leftOutOf(trial, r.at, start, time),
           ...(reading?.series ? { source: reading.series.file.replace(/^.*[\\/]/u, "") } : {}),
         };
@@ -62,6 +78,14 @@ function fitFigure(trial: Trial, readings: readonly FittedReading[], time: Unit,
     ...made,
     caption: `${trial.title}: measured points, the curve fitted to all trials at once, and what is left between them. Time counts from the ${trial.reacting ? "start" : "injection"}.`,
   };
+}
+
+function fineOf(
+  curve: FineCurve | undefined,
+  shownTime: (t: number) => number,
+  shown: (c: number) => number,
+): Pick<FitReading, "fine"> {
+  return curve ? { fine: { time: curve.time.map(shownTime), value: curve.value.map(shown) } } : {};
 }
 
 function leftOutOf(trial: Trial, at: string, start: number, time: Unit) {

@@ -41,7 +41,10 @@ export function notSupportedOf({ readings, across, ranking }: StudyResult): Stud
     byWhat.set(what, [...(byWhat.get(what) ?? []), ...(says === "" ? [] : [of + says])]);
   };
   for (const { trial, moments } of readings) {
-    for (const words of moments.notSupported) add(words, readings.length > 1 ? `${trial.title}: ` : "");
+    // Where a test has one reading, nobody asks which.
+    const one = (words: string): string =>
+      moments.readings.length < 2 ? words.replace(/ \(at '[^']*'\)$/, "") : words;
+    for (const words of moments.notSupported) add(one(words), readings.length > 1 ? `${trial.title}: ` : "");
   }
   for (const words of across?.notSupported ?? []) add(words, "");
   const fit = ranking[0]?.fit;
