@@ -1,6 +1,7 @@
 import { readFileSync } from "node:fs";
 import type { Download, Page } from "playwright-core";
 import { describe, expect, test } from "vitest";
+import { allFigures } from "../../src/report/all-figures.js";
 import { writeReport } from "../../src/report/report.js";
 import { demo } from "../report/demo.js";
 import { describeInBrowser } from "./browser.js";
@@ -161,6 +162,112 @@ describeInBrowser("the report in a browser", ({ open }) => {
     expect(vessel).toContain("body,bulk,,650,L");
   });
 
+  test("every kind of figure has its numbers as a table, and is read by the keyboard alone", async () => {
+    let { page, complaints } = await open(html);
+    const names = await page.evaluate<string[]>(`[...document.querySelectorAll("figure")].map((f) => f.dataset.name)`);
+    expect(names).toEqual(allFigures(demo).map((f) => f.name));
+    const kinds = new Map(names.map((name) => [name.replace(/-\d.*$/, ""), name]));
+    for (const [k, name] of [...kinds.values()].entries()) {
+      // The browser holds back what one page would save more than twenty times in a row.
+      if (k % 5 === 4) ({ page, complaints } = await open(html));
+      const figure = `#figure-${name}`;
+      const rows = (await saved(page, figure, "Save data as CSV", `${name}.csv`)).trimEnd().split("\n");
+      expect(rows.length, name).toBeGreaterThan(1);
+      expect(new Set(rows.map((r) => cells(r))).size, name).toBe(1);
+      expect(await saved(page, figure, "Save as SVG", `${name}.svg`)).toMatch(
+        /^<svg[^>]*>\s*<title>[^<]+<\/title>\s*<desc>[^<]+/,
+      );
+      if (name === "vessel") continue; // its labels say it all
+      await page.locator(`${figure} .drawing`).focus();
+      await page.keyboard.press("ArrowRight");
+      await page.keyboard.press("ArrowRight");
+      expect(await page.locator(`${figure} .told`).textContent(), name).toMatch(/\d/);
+      expect(await page.locator(`${figure} .readout *`).count(), name).toBeGreaterThan(0);
+      expect(complaints).toEqual([]);
+    }
+  });
+
+  test("the pointer reads the rows of bars and intervals", async () => {
+    const { page } = await open(html);
+    for (const [name, said] of [
+      ["spread-1", /^k2: share of the variance, % 71$/],
+      ["change-1", /^baffle: conversion of A, .* 85\.1; low 83\.2; high 87\.1$/],
+    ] as const) {
+      const drawing = page.locator(`#figure-${name} svg`);
+      await drawing.scrollIntoViewIfNeeded();
+      const box = (await drawing.boundingBox())!;
+      await page.mouse.move(box.x + box.width * 0.5, box.y + box.height * 0.2);
+      expect(await page.locator(`#figure-${name} .told`).textContent()).toMatch(said);
+    }
+  });
+
+  test("what scrolls sideways on a phone shows it and is reached by the keyboard", async () => {
+    const { page } = await open(html, { width: 360 });
+    const tables = await page.evaluate<{ wide: boolean; focus: boolean; named: boolean; shadow: boolean }[]>(
+      `[...document.querySelectorAll(".scroll")].map((b) => ({ wide: b.scrollWidth > b.clientWidth + 1, focus: b.tabIndex === 0, named: !!b.getAttribute("aria-label"), shadow: getComputedStyle(b).backgroundImage.includes("gradient") }))`,
+    );
+    expect(tables.some((t) => t.wide)).toBe(true);
+    for (const t of tables) {
+      expect(t.focus).toBe(t.wide);
+      expect(t.shadow).toBe(true);
+      if (t.wide) expect(t.named).toBe(true);
+    }
+    const hint = `getComputedStyle(document.querySelector("figure.wide figcaption"), "::before").content`;
+    expect(await page.evaluate<string>(hint)).toContain("sideways");
+  });
+
+  test("rows of tables are as high on a phone as what is seen of them", async () => {
+    const { page } = await open(html, { width: 360 });
+    // Of a row's cells the one that makes it high may be scrolled out of sight, but by no more than two lines.
+    const blank = await page.evaluate<number[]>(
+      `[...document.querySelectorAll("tbody tr")].map((r) => { const cells = [...r.cells]; const text = (c) => { const range = document.createRange(); range.selectNodeContents(c); return range.getBoundingClientRect().height; }; const all = Math.max(...cells.map(text)); const seen = Math.max(...cells.filter((c) => c.getBoundingClientRect().left < 360).map(text)); return all - seen; })`,
+    );
+    expect(Math.max(...blank)).toBeLessThan(50);
+  });
+
+  test("headings go down one rank at a time, tables have captions and headed columns and rows", async () => {
+    const { page } = await open(html);
+    const ranks = await page.evaluate<number[]>(
+      `[...document.querySelectorAll("h1,h2,h3,h4,h5,h6")].map((h) => Number(h.tagName[1]))`,
+    );
+    expect(ranks[0]).toBe(1);
+    for (let k = 1; k < ranks.length; k++) expect(ranks[k] - ranks[k - 1]).toBeLessThanOrEqual(1);
+    const tables = await page.evaluate<boolean[]>(
+      `[...document.querySelectorAll("table")].map((t) => !!t.caption && [...t.tHead.rows[0].cells].every((c) => c.scope === "col") && [...t.tBodies[0].rows].every((r) => r.cells[0].scope === "row"))`,
+    );
+    expect(tables.length).toBeGreaterThan(5);
+    expect(tables).not.toContain(false);
+    expect(await page.locator("html").getAttribute("lang")).toBe("en");
+  });
+
+  test("the keyboard comes first to a way past the contents, then goes down the page", async () => {
+    const { page } = await open(html);
+    await page.keyboard.press("Tab");
+    expect(await page.evaluate<string>(`document.activeElement.textContent`)).toBe("To the answer");
+    expect(await page.locator(".skip").isVisible()).toBe(true);
+    await page.keyboard.press("Enter");
+    expect(await page.evaluate<string>(`document.activeElement.id`)).toBe("answer");
+    const tops: number[] = [];
+    for (let k = 0; k < 25; k++) {
+      await page.keyboard.press("Tab");
+      tops.push(
+        await page.evaluate<number>(
+          `document.activeElement.getBoundingClientRect().top + document.scrollingElement.scrollTop`,
+        ),
+      );
+    }
+    // Figures stand in columns: within a row their buttons may lie a little higher than those of the one before.
+    for (let k = 1; k < tops.length; k++) expect(tops[k]).toBeGreaterThan(tops[k - 1] - 600);
+    expect(tops[tops.length - 1]).toBeGreaterThan(tops[0]);
+  });
+
+  test("moves nothing by itself where motion is not wanted", async () => {
+    const { page } = await open(html);
+    await page.emulateMedia({ reducedMotion: "reduce" });
+    const moving = `[...document.querySelectorAll("*")].filter((e) => { const s = getComputedStyle(e); return s.scrollBehavior === "smooth" || s.animationName !== "none" || Number.parseFloat(s.transitionDuration) > 0; }).length`;
+    expect(await page.evaluate<number>(moving)).toBe(0);
+  });
+
   test("has landmarks, one heading of the first rank, and names for what can be focused", async () => {
     const { page } = await open(html);
     for (const landmark of ["main", "nav", "header", "footer", "h1"]) {
@@ -172,6 +279,9 @@ describeInBrowser("the report in a browser", ({ open }) => {
     expect(nameless).toBe(0);
   });
 });
+
+/** Cells of a line of CSV. */
+const cells = (line: string): number => line.replace(/"(?:[^"]|"")*"/g, "").split(",").length;
 
 async function saved(page: Page, figure: string, button: string, as: string): Promise<string> {
   const wait = page.waitForEvent("download");

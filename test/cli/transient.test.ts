@@ -36,6 +36,20 @@ const simulate = (network: string, duty: string, ...more: string[]): string[] =>
 ];
 
 describe("a duty in time", () => {
+  test("what is counted leaves as a number, not as a share", async () => {
+    const counted =
+      "duty: A count\nformat: 1\nchemistry: chemistry.yaml\nfeeds: {feed: {A: {from: 1000 1/mL, to: 2000 1/mL, start: 2 min, lasting: 3 min}}}\nreport: [time A at product above 100 1/mL]\n";
+    const ask = simulate("tank.yaml", "counted.yaml", "--until", "10 min");
+    const { document } = await json(ask, { files: { ...files, "counted.yaml": counted } });
+    const [{ amount }] = at(document, "report") as { amount: { value: number; unit: string } }[];
+    expect(amount.unit).toBe("1");
+    // 10 L/min for 10 min at 667 to about 950 in 1 mL.
+    expect(amount.value).toBeGreaterThan(1e5 * 667);
+    expect(amount.value).toBeLessThan(1e5 * 950);
+    const { out } = await backmix(ask, { files: { ...files, "counted.yaml": counted } });
+    expect(out).toMatch(/left with \d\.\d+e7 A/);
+  });
+
   test("prints one document with series, passages, figures and balances", async () => {
     const { status, document } = await json(simulate("tank.yaml", "upset.yaml", "--until", "60 min", "--points", "7"), {
       files,

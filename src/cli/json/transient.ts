@@ -1,11 +1,11 @@
 import type { Plant } from "../../compile/plant.js";
 import type { Duty } from "../../model/duty.js";
 import { temperatureUnit } from "../../reaction/figures.js";
-import { speciesUnits } from "../../reaction/species-units.js";
+import { amountUnit, speciesUnits } from "../../reaction/species-units.js";
 import type { TransientFigure } from "../../transient/figures.js";
 import { passageOf } from "../../transient/passage.js";
 import type { Course, Transient } from "../../transient/transient.js";
-import { dimensions, times } from "../../units/dimension.js";
+import { dimensions } from "../../units/dimension.js";
 import type { Unit } from "../../units/unit.js";
 import type { Clock } from "../times.js";
 import { finite, quantity, type SeriesJson, series } from "./quantity.js";
@@ -40,7 +40,7 @@ export function transientJson(
     ...temperatureOf(course),
   });
   const all = (courses: readonly Course[]) => Object.fromEntries(courses.map((c) => [c.name, mixture(c)]));
-  const amount = (i: number): Unit => network.units.unitFor(times(duty.concentrations[i], dimensions.volume));
+  const amount = (i: number): Unit => amountUnit(network, duty.concentrations[i]);
   const { balance } = run;
   const until = run.times[run.times.length - 1];
   return {

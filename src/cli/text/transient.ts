@@ -1,12 +1,12 @@
 import type { Plant } from "../../compile/plant.js";
 import type { Duty } from "../../model/duty.js";
 import { temperatureUnit } from "../../reaction/figures.js";
-import { speciesUnits } from "../../reaction/species-units.js";
+import { amountUnit, speciesUnits } from "../../reaction/species-units.js";
 import { dutyCautions } from "../../report/duty-cautions.js";
 import type { TransientFigure } from "../../transient/figures.js";
 import { passageOf } from "../../transient/passage.js";
 import { closes, type Transient } from "../../transient/transient.js";
-import { dimensions, times } from "../../units/dimension.js";
+import { type Dimension, dimensions } from "../../units/dimension.js";
 import { formatNumber, formatQuantity } from "../../units/format.js";
 import { inUnit } from "../../units/unit.js";
 import type { Clock } from "../times.js";
@@ -97,9 +97,7 @@ function figuresText(
     const i = run.species.indexOf(duty.report[k].of);
     const { spans, volume, amount, stillAtEnd } = f.beyond;
     const held =
-      amount === undefined
-        ? ""
-        : ` with ${formatQuantity(amount, units.unitFor(times(duty.concentrations[i], dimensions.volume)))} of ${duty.report[k].of}`;
+      amount === undefined ? "" : ` with ${amountText(plant, duty.concentrations[i], amount)}${duty.report[k].of}`;
     const at = (t: number): string => formatNumber(inUnit(t, clock.unit));
     const listed = spans.slice(0, mostSpans).map(({ from, to }) => `${at(from)} to ${at(to)}`);
     const more = spans.length > mostSpans ? ` and ${spans.length - mostSpans} more` : "";
@@ -113,6 +111,12 @@ function figuresText(
     return [f.name, `${stillAtEnd ? "at least " : ""}${formatQuantity(f.value, clock.unit)}`, `${when}${left}`];
   });
   return table([{ title: "figure, at the end" }, { title: "value", align: "right" }, { title: "" }], rows);
+}
+
+/** "2.5 mol of ", or "9.5e8 " of what is counted. */
+function amountText({ network }: Plant, concentration: Dimension, amount: number): string {
+  const unit = amountUnit(network, concentration);
+  return `${formatQuantity(amount, unit)} ${unit.name === "" ? "" : "of "}`;
 }
 
 /** How far a figure went meanwhile: at its end an upset is over, and says nothing. */

@@ -38,9 +38,10 @@ li{margin:.25rem 0;max-width:46rem}
 figure{margin:0;min-width:0;break-inside:avoid}
 .drawing svg{display:block;overflow:visible}
 .drawing:focus-visible,.scroll:focus-visible,button:focus-visible,a:focus-visible{outline:2px solid var(--bm-accent);outline-offset:2px}
-.tools{margin:.5rem 0 0;display:flex;gap:.5rem;flex-wrap:wrap;align-items:baseline}
-.told{font-size:.85rem;color:var(--bm-quiet);margin-left:.4rem;max-width:40rem}
-.told:not(:empty){min-height:1.5em}
+.tools{position:relative;margin:.5rem 0 0;display:flex;gap:.5rem;flex-wrap:wrap;align-items:baseline}
+.hint{font-size:.85rem;color:var(--bm-quiet)}
+.told{position:absolute;z-index:1;top:calc(100% + .25rem);left:0;max-width:40rem;font-size:.85rem;background:var(--bm-paper);pointer-events:none}
+.told:not(:empty){padding:.1rem .6rem;border:1px solid var(--bm-faint);border-radius:4px}
 button{font:inherit;font-size:.8rem;color:var(--bm-wall);background:none;border:1px solid var(--bm-faint);border-radius:4px;padding:.15rem .6rem;cursor:pointer}
 button:hover{border-color:var(--bm-wall)}
 figcaption{font-size:.9rem;margin-top:.3rem;max-width:46rem}
@@ -73,19 +74,17 @@ body{padding:1.2rem .9rem 3rem}
 .wide figcaption::before{content:"The picture goes on sideways. "}
 th,td{padding-right:.8rem}
 tbody th{min-width:8rem}
+tbody td:not(.number):not(:empty){min-width:10rem}
 thead th.number{min-width:4.5rem}
 .answer{padding-left:.8rem}
 .answer dl{display:block}
 .answer dt{margin-top:.6rem}
 }
-@media (prefers-reduced-motion:no-preference){
-html{scroll-behavior:smooth}
-}
 @page{margin:14mm}
 @media print{
 :root{font-size:9.5pt}
 body{max-width:none;padding:0;font-size:1rem;line-height:1.38}
-nav,.tools,.told,.skip{display:none}
+nav,.tools,.skip{display:none}
 h1{font-size:16pt}
 h2{font-size:12.5pt;margin:1.3rem 0 .4rem;padding-top:.4rem;break-after:avoid}
 h3,caption,.graded{break-after:avoid}
