@@ -47,8 +47,9 @@ export function followOf(plant: Plant, node: number): Follow | undefined {
   if (pockets) return refuse("a body without back-mixing beside stagnant pockets");
   const held = block.volume;
   if (mixing.is === "plug") return { is: "parcels", volume: held, lag: held, stays: undefined, spread: undefined };
-  const looped = plant.groups.some((group) => group.length > 1 && group.includes(node));
-  if (looped) return refuse("a body of parcels that stay apart, within a recycle");
   const { stays } = mixing;
+  // In a circle what enters is known only up to now: it takes a body that nobody leaves at once.
+  const looped = plant.groups.some((group) => group.length > 1 && group.includes(node));
+  if (looped && stays.from === 0) return refuse("a body that parcels may leave at once, within a recycle");
   return { is: "parcels", volume: held, lag: stays.from * held, stays, spread: block.realize(inflow[node]) };
 }

@@ -8,6 +8,8 @@ export interface ParcelSignalAsk extends TubeAsk {
   readonly stays: Stays;
   /** s */
   readonly horizon: number;
+  /** Up to when what enters is known by now, s, if it is needed until then. */
+  readonly known: (until: number) => number;
   /** Times at which what enters jumps or kinks, s. */
   readonly entries: ArrayLike<number>;
   /** What entered before, in balance; with `contents`, nothing is asked of it. */
@@ -37,6 +39,7 @@ export function parcelSignal(ask: ParcelSignalAsk): ParcelSignal {
     inlet,
     breaks: ask.entries,
     horizon,
+    known: ask.known,
     basis,
   });
   const last = stays.marks[stays.marks.length - 1];
@@ -70,7 +73,7 @@ export function parcelSignal(ask: ParcelSignalAsk): ParcelSignal {
       unit: mean,
       blur: 10,
       breaks,
-      longest: (t) => Math.max(mean / 8, t / 4),
+      longest: (t) => Math.min(ask.longest(t), Math.max(mean / 8, t / 4)),
       evaluate(t, _, out) {
         if (!old()) return false;
         if (!parcels.integral(t, stays.from, stays.density, total ? old() : undefined, out)) return false;

@@ -34,6 +34,8 @@ export interface ParcelAsk {
   readonly breaks: ArrayLike<number>;
   /** s: nobody is followed beyond. */
   readonly horizon: number;
+  /** Up to when what enters is known by now, s, if it is needed until then. */
+  readonly known: (until: number) => number;
   readonly basis: PieceBasis;
 }
 
@@ -205,7 +207,7 @@ export class Parcels {
 
   /** Follows parcels up to those that enter at a time. */
   private reach(until: number): void {
-    const { breaks, inlet, path, horizon } = this.ask;
+    const { breaks, inlet, path, horizon, known } = this.ask;
     const { mean } = path;
     for (;;) {
       const from = this.entered.at(-1)?.to ?? 0;
@@ -217,7 +219,8 @@ export class Parcels {
           break;
         }
       }
-      let to = Math.min(stop, Math.max(inlet.pace(from, 2), from + shortest * mean));
+      const seen = known(until);
+      let to = Math.min(stop, seen, Math.max(inlet.pace(from, 2), from + shortest * mean));
       for (;;) {
         const parcels = this.stretch(from, to);
         if (!parcels) this.failed = true;

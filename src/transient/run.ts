@@ -16,6 +16,7 @@ import { type TubeAsk, tubeSignal } from "./tube-signal.js";
 /** Parts of the shortest delay of a loop that a step may take, and a piece of what leaves a tube: together they are less than it. */
 const stepInLoop = 0.55;
 const pieceInLoop = 0.4;
+const aheadInLoop = 0.3;
 /** Pieces of what comes from an earlier stage that one step may take in. */
 const piecesAtOnce = 4;
 
@@ -48,6 +49,8 @@ export class Run {
   readonly stages: { readonly stage: Stage; readonly run: StageRun; readonly first: Float64Array }[] = [];
   readonly stopped: Stopped | undefined;
   private readonly signals = new Map<number, Signal>();
+  /** By stage, where something is integrated. */
+  private readonly running: (StageRun | undefined)[] = [];
   /** Bodies of parcels that stay apart. */
   private readonly apart = new Map<number, ParcelSignal>();
   private readonly breaks: readonly Float64Array[];
@@ -94,6 +97,7 @@ export class Run {
         scene.width,
       );
       this.stages.push({ stage, run, first });
+      this.running[s] = run;
       for (const [body, pieces] of run.outflow) this.signals.set(nodes[body], pieces);
       run.go();
       if (run.stopped && !this.stopped) {
@@ -170,6 +174,14 @@ export class Run {
       ...ask,
       stays: body.stays,
       horizon,
+      // In a circle with cells as far as these have come; in one without, a little ahead of what has left.
+      known: (until) =>
+        scene.looped[source]
+          ? Math.max(
+              until,
+              this.running[scene.stage[source]]?.at ?? until + aheadInLoop * this.loop[scene.stage[source]],
+            )
+          : Number.POSITIVE_INFINITY,
       entries,
       entering: this.enteringBefore(source),
     });

@@ -93,6 +93,19 @@ outlets: [product]
     );
   });
 
+  test("a recycle with laminar flow in it", () => {
+    compare(
+      `feeds: {feed: {flow: 10 L/min, to: mix}}
+compartments:
+  mix: {kind: junction, to: pipe}
+  pipe: {kind: laminar, volume: 90 L, to: tank}
+  tank: {kind: stirred, volume: 150 L, to: {mix: 12 L/min, product: rest}}
+outlets: [product]
+`,
+      1e-8,
+    );
+  });
+
   test("a circle of tubes alone", () => {
     compare(
       `feeds: {feed: {flow: 10 L/min, to: mix}}
