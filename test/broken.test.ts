@@ -112,6 +112,7 @@ const shownBy: Record<keyof typeof runEntries, string> = {
   "nothing-to-fit": "fit/findings.test.ts",
   "no-points": "fit/findings.test.ts",
   "no-signal-to-fit": "fit/run-codes.test.ts",
+  "all-beyond-limits": "fit/nothing.test.ts",
   "only-noise-to-fit": "fit/nothing.test.ts",
   "explains-nothing": "fit/nothing.test.ts",
   "one-reading-rules": "fit/one-reading.test.ts",

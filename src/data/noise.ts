@@ -1,4 +1,5 @@
 import type { Reading } from "../model/trial.js";
+import { fTail } from "../numerics/distributions.js";
 import { countingVariance } from "./counting.js";
 import { type Persistence, persistenceOf } from "./persistence.js";
 
@@ -60,15 +61,41 @@ export function roughness(t: Float64Array, y: Float64Array): number {
   return count === 0 ? 0 : Math.sqrt(sum / count);
 }
 
-/** True where nothing but noise is there: no more spread than noise has, and no point that stands out. */
+/** The chance that noise alone is taken for a curve by the means of its parts. */
+const unlikely = 1e-3;
+
+/**
+ * True where nothing but noise is there: no more spread than noise has, no parts of the record that lie apart, and no point that stands
+ * out. In long records a curve far below the scatter of one point shows in the first two.
+ */
 export function isNoise(t: Float64Array, y: Float64Array): boolean {
   const mean = y.reduce((sum, c) => sum + c, 0) / y.length;
   const spread = y.reduce((sum, c) => sum + (c - mean) ** 2, 0) / Math.max(1, y.length - 1);
   // The ratio of successive differences to variance (von Neumann 1941), here of second differences.
-  if (spread > 1.6 * roughness(t, y) ** 2) return false;
+  // Of white noise its standard deviation is about sqrt(1.9 / n).
+  const limit = Math.min(1.6, 1 + 3.1 * Math.sqrt(1.9 / y.length));
+  if (spread > limit * roughness(t, y) ** 2 || partsDiffer(y)) return false;
   const middle = median(y);
   const robust = 1.4826 * median(y.map((c) => Math.abs(c - middle)));
   return y.every((c) => Math.abs(c - middle) <= 6 * robust);
+}
+
+/** Do the means of as many parts as points in each lie farther apart than those of noise do? One-way analysis of variance. */
+function partsDiffer(y: Float64Array): boolean {
+  const size = Math.floor(Math.sqrt(y.length));
+  const parts = size > 0 ? Math.floor(y.length / size) : 0;
+  if (size < 4) return false;
+  let [within, sum, square] = [0, 0, 0];
+  for (let p = 0; p < parts; p++) {
+    const own = y.subarray(p * size, (p + 1) * size);
+    const mean = own.reduce((s, c) => s + c, 0) / size;
+    within += own.reduce((s, c) => s + (c - mean) ** 2, 0);
+    sum += mean;
+    square += mean * mean;
+  }
+  const between = size * (square - (sum * sum) / parts);
+  const freedom = parts * (size - 1);
+  return within > 0 && fTail(between / (parts - 1) / (within / freedom), parts - 1, freedom) < unlikely;
 }
 
 /** The middle value; the mean of the two middle ones where the count is even. */

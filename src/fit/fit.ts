@@ -83,7 +83,7 @@ export function fitWith(
   const weights = weightsFor(setup);
   const problem = problemWith(setup, weights.weight);
   const unknowns = setup.coordinates.length + problem.linear;
-  if (setup.observations <= unknowns) {
+  if (setup.observations < fewestFor(setup, unknowns)) {
     report("too-few-points", trials[0]?.at ?? network.at, { points: setup.observations, unknowns });
     return { fit: undefined, problems };
   }
@@ -116,9 +116,23 @@ export function fitWith(
 /** So often a better optimum is followed. */
 const mostBetter = 3;
 
+/** Points of a curve below which no fit says anything. */
+const fewestOfCurve = 5;
+
+/** Points that so many unknowns need: of curves enough to tell how far readings scatter, where no `noise:` says so, and how rivals stand. */
+function fewestFor({ blocks }: Setup, unknowns: number): number {
+  if (blocks.some((b) => b.declared.of)) return unknowns + 1;
+  return Math.max(fewestOfCurve, unknowns + (blocks.every((b) => b.declared.noise) ? 1 : 3));
+}
+
 /** A fit to nothing but constants would be numbers made of nothing. One reading that moves is enough. */
 function anySignal({ blocks }: Setup, report: Report): boolean {
   const [{ key, declared, measured }] = blocks;
+  if (blocks.every((b) => b.censored?.every((f) => f !== 0))) {
+    const side = blocks[0].censored?.every((f) => f < 0) ? "below" : "beyond";
+    report("all-beyond-limits", declared.where, { key, side, others: blocks.length - 1 });
+    return false;
+  }
   if (blocks.some((b) => b.declared.of?.steady || hasSignal(b.measured))) return true;
   const value = formatQuantity(measured[0], declared.unit, 3);
   report("no-signal-to-fit", declared.where, { key, value, others: blocks.length - 1 });

@@ -1,4 +1,5 @@
 import { describe, expect, test } from "vitest";
+import { isNoise } from "../../src/data/noise.js";
 import { fit } from "../../src/fit/fit.js";
 import { networkOf, trialOf } from "./load.js";
 import { every, noisy, synthetic } from "./synthetic.js";
@@ -28,6 +29,49 @@ readings:
   );
 
 describe("readings of nothing", () => {
+  test("all below the limit of detection is no fit", () => {
+    const trial = trialOf(
+      `trial: Log
+format: 1
+injection: {at: feed, pulse: 50 g}
+readings:
+  - {at: out, file: log.csv, time: {column: t, unit: min}, value: {column: c, unit: g/L}, limits: {below: 10 g/L}}
+`,
+      () => `t,c\n${Array.from({ length: 60 }, (_, i) => `${i},${0.5 * Math.exp(-i / 10)}\n`).join("")}`,
+    );
+    const { fit: found, problems } = fit(tank, [trial], { starts: 0 });
+    expect(found).toBeUndefined();
+    expect(problems.map((p) => p.code)).toEqual(["all-beyond-limits"]);
+  });
+
+  test("three points are no curve, however few the unknowns", () => {
+    const few = (times: readonly number[], reading: readonly string[] = []) =>
+      synthetic(
+        tank,
+        { held: 0.1 },
+        { injection: "{at: feed, pulse: 50 g, start: 0 min}", at: "out", times, reading, noise: noisy(1, 1e-3) },
+      );
+    for (const reading of [[], ["noise: {floor: 0.001 g/L}"]]) {
+      const { fit: found, problems } = fit(tank, [few([1, 10, 20], reading)]);
+      expect(found).toBeUndefined();
+      expect(problems.map((p) => p.code)).toEqual(["too-few-points"]);
+    }
+    expect(fit(tank, [few([1, 5, 10, 20, 30])]).fit?.values.held).toBeCloseTo(0.1, 2);
+  });
+
+  test("a long record shows a curve that lies within the scatter of its points", () => {
+    const noise = noisy(3, 0.3);
+    const long = Float64Array.from({ length: 600 }, (_, i) => 0.5 * Math.exp(-i / 75) + noise());
+    expect(isNoise(Float64Array.from(long.keys()), long)).toBe(false);
+    let taken = 0;
+    for (let seed = 1; seed <= 200; seed++) {
+      const blank = noisy(seed, 0.3);
+      const y = Float64Array.from({ length: 600 }, () => blank());
+      if (!isNoise(Float64Array.from(y.keys()), y)) taken++;
+    }
+    expect(taken).toBeLessThanOrEqual(2);
+  });
+
   test.each(["none", "constant", "drift"])("only noise is refused, whatever the baseline: %s", (baseline) => {
     for (let seed = 1; seed < 12; seed++) {
       const noise = noisy(seed, 0.01);

@@ -73,6 +73,13 @@ export const runEntries = {
     fix: "check the column, the detector and the dose; where no tracer came by, there is nothing that a network could explain",
     example: { key: "Salt pulse/product", value: "0 g/L", others: 0 },
   }),
+  "all-beyond-limits": entry({
+    severity: "error",
+    says: (d: { key: string; side: "below" | "beyond"; others: number }) =>
+      `every point of '${d.key}'${d.others > 0 ? " and of all other readings" : ""} is ${d.side} a limit of the detector: nothing was measured that could be fitted`,
+    fix: "check `limits:` and its units; else plan another dose or a detector of another range",
+    example: { key: "Salt pulse/product", side: "below", others: 0 },
+  }),
   "only-noise-to-fit": entry({
     severity: "error",
     says: (d: { key: string; others: number }) =>
@@ -100,7 +107,7 @@ export const runEntries = {
   "too-few-points": entry({
     severity: "error",
     says: (d: { points: number; unknowns: number }) =>
-      `${d.points} points cannot fix ${d.unknowns} unknowns (parameters, baselines and scales)`,
+      `${d.points} points ${d.points > d.unknowns ? "are too few to tell" : "cannot fix"} ${d.unknowns === 1 ? "one unknown" : `${d.unknowns} unknowns`} (parameters, baselines and scales)${d.points > d.unknowns ? " and how well they are known" : ""}`,
     fix: "free fewer parameters, fit more trials at once, or take baseline and scale as known",
     example: { points: 5, unknowns: 6 },
   }),
