@@ -1,16 +1,12 @@
 import { Command, InvalidArgumentError, Option } from "commander";
 import { command } from "./command.js";
 import { addLibraryCommands, libraryCommandNames } from "./library-commands.js";
-import { UsageError } from "./outcome.js";
 import type { Stage } from "./stage.js";
 import { version } from "./version.js";
 
-/** Commands of the language's contract that this version does not have. */
-const laterCommands = "language-server".split(", ");
-
 /** The commands that this version has. */
 export const commandNames: ReadonlySet<string> = new Set([
-  ...["check", "draw", "simulate", "moments", "fit", "study", "sweep", "plan", "watch"],
+  ...["check", "draw", "simulate", "moments", "fit", "study", "sweep", "plan", "watch", "language-server"],
   ...libraryCommandNames,
 ]);
 
@@ -39,12 +35,12 @@ export function program(stage: Stage): Command {
   addSweep(root, stage);
   addPlan(root, stage);
   addWatch(root, stage);
+  addLanguageServer(root, stage);
   addLibraryCommands(root, stage);
   addOutside(root, stage);
-  for (const name of laterCommands) addLater(root, name);
   root.addHelpText(
     "after",
-    `\nEvery command reads files, or - for standard input, and takes --json.\nNot in this version: ${laterCommands.join(", ")}.\n\nStart here:\n  backmix study networks/demo/study.yaml`,
+    `\nEvery command reads files, or - for standard input, and takes --json.\n\nStart here:\n  backmix study networks/demo/study.yaml`,
   );
   return root;
 }
@@ -268,15 +264,16 @@ function addWatch(root: Command, { perform, inputs, io }: Stage): void {
     );
 }
 
-function addLater(root: Command, name: string): void {
-  root
-    .command(name, { hidden: true })
-    .helpOption(false)
-    .allowUnknownOption()
-    .allowExcessArguments()
-    .action(() => {
-      throw new UsageError(`'${name}' is not in this version of backmix`);
-    });
+function addLanguageServer(root: Command, { perform, inputs, io }: Stage): void {
+  command(root, "language-server", "the Language Server Protocol on standard input and output, for editors", [
+    "language-server",
+  ])
+    .option("--stdio", "the only way that it speaks; many editors ask for it by name")
+    .action(() =>
+      perform("language-server", async () =>
+        (await import("./language-server/serve.js")).languageServer({ inputs, io }),
+      ),
+    );
 }
 
 const collect = (value: string, before: readonly string[] | undefined): string[] => [...(before ?? []), value];
