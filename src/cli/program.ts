@@ -80,7 +80,11 @@ function addDraw(root: Command, { perform, inputs, io }: Stage): void {
     )
     .option("--duty <file>", "the duty that a reaction's quantity is of")
     .option("--compare <network>", "draw this one instead, with what moved since the first")
-    .option("--set <name=value>", "another value of a parameter, constant or feed.flow; repeatable", collect)
+    .option(
+      "--set <name=value>",
+      "another value of a parameter, constant or feed.flow, with --duty also of the duty (k, feed.A, temperature); repeatable",
+      collect,
+    )
     .action((network: string, options) =>
       perform("draw", async () => (await import("./draw.js")).draw(network, options, { inputs, io })),
     );
@@ -106,7 +110,11 @@ function addSimulate(root: Command, { perform, inputs, io }: Stage): void {
     .option("--draws <n>", "with --transient: when to divert, from so many draws of all that has a `±`", whole(20))
     .option("--delay <time>", "with --draws: how late an analyser tells")
     .option("--at <names>", "inner places to look at besides the outlets; repeatable", collectNames)
-    .option("--set <name=value>", "another value of a parameter, constant or feed.flow; repeatable", collect)
+    .option(
+      "--set <name=value>",
+      "another value of a parameter, constant or feed.flow, with --duty also of the duty (k, feed.A, temperature); repeatable",
+      collect,
+    )
     .option(
       "--follows <name>",
       "with --pulse and --step: a substance that the network `sends` otherwise than the liquid",
@@ -239,7 +247,7 @@ function addSweep(root: Command, { perform, inputs, io }: Stage): void {
     .option("--trial <files...>", "fit to these trials first, and carry what they leave open; repeatable")
     .option(
       "--set <name=value>",
-      "another value of a parameter, constant or feed.flow, taken as known; repeatable",
+      "another value of a parameter, constant or feed.flow, or of the duty (k, feed.A, temperature), taken as known; repeatable",
       collect,
     )
     .option(
