@@ -28,5 +28,6 @@ export const layers = [
   "draw",
   "report",
   "manual",
+  "editor",
   "cli",
 ] as const;

@@ -1,16 +1,12 @@
 import { Command, InvalidArgumentError, Option } from "commander";
 import { command } from "./command.js";
 import { addLibraryCommands, libraryCommandNames } from "./library-commands.js";
-import { UsageError } from "./outcome.js";
 import type { Stage } from "./stage.js";
 import { version } from "./version.js";
 
-/** Commands of the language's contract that this version does not have. */
-const laterCommands = "language-server".split(", ");
-
 /** The commands that this version has. */
 export const commandNames: ReadonlySet<string> = new Set([
-  ...["check", "draw", "simulate", "moments", "fit", "study", "sweep", "plan", "watch"],
+  ...["check", "draw", "simulate", "moments", "fit", "study", "sweep", "plan", "watch", "language-server"],
   ...libraryCommandNames,
 ]);
 
@@ -39,12 +35,12 @@ export function program(stage: Stage): Command {
   addSweep(root, stage);
   addPlan(root, stage);
   addWatch(root, stage);
+  addLanguageServer(root, stage);
   addLibraryCommands(root, stage);
   addOutside(root, stage);
-  for (const name of laterCommands) addLater(root, name);
   root.addHelpText(
     "after",
-    `\nEvery command reads files, or - for standard input, and takes --json.\nNot in this version: ${laterCommands.join(", ")}.\n\nStart here:\n  backmix study networks/demo/study.yaml`,
+    `\nEvery command reads files, or - for standard input, and takes --json.\n\nStart here:\n  backmix study networks/demo/study.yaml`,
   );
   return root;
 }
@@ -84,7 +80,11 @@ function addDraw(root: Command, { perform, inputs, io }: Stage): void {
     )
     .option("--duty <file>", "the duty that a reaction's quantity is of")
     .option("--compare <network>", "draw this one instead, with what moved since the first")
-    .option("--set <name=value>", "another value of a parameter, constant or feed.flow; repeatable", collect)
+    .option(
+      "--set <name=value>",
+      "another value of a parameter, constant or feed.flow, with --duty also of the duty (k, feed.A, temperature); repeatable",
+      collect,
+    )
     .action((network: string, options) =>
       perform("draw", async () => (await import("./draw.js")).draw(network, options, { inputs, io })),
     );
@@ -110,7 +110,11 @@ function addSimulate(root: Command, { perform, inputs, io }: Stage): void {
     .option("--draws <n>", "with --transient: when to divert, from so many draws of all that has a `±`", whole(20))
     .option("--delay <time>", "with --draws: how late an analyser tells")
     .option("--at <names>", "inner places to look at besides the outlets; repeatable", collectNames)
-    .option("--set <name=value>", "another value of a parameter, constant or feed.flow; repeatable", collect)
+    .option(
+      "--set <name=value>",
+      "another value of a parameter, constant or feed.flow, with --duty also of the duty (k, feed.A, temperature); repeatable",
+      collect,
+    )
     .option(
       "--follows <name>",
       "with --pulse and --step: a substance that the network `sends` otherwise than the liquid",
@@ -243,7 +247,7 @@ function addSweep(root: Command, { perform, inputs, io }: Stage): void {
     .option("--trial <files...>", "fit to these trials first, and carry what they leave open; repeatable")
     .option(
       "--set <name=value>",
-      "another value of a parameter, constant or feed.flow, taken as known; repeatable",
+      "another value of a parameter, constant or feed.flow, or of the duty (k, feed.A, temperature), taken as known; repeatable",
       collect,
     )
     .option(
@@ -268,15 +272,16 @@ function addWatch(root: Command, { perform, inputs, io }: Stage): void {
     );
 }
 
-function addLater(root: Command, name: string): void {
-  root
-    .command(name, { hidden: true })
-    .helpOption(false)
-    .allowUnknownOption()
-    .allowExcessArguments()
-    .action(() => {
-      throw new UsageError(`'${name}' is not in this version of backmix`);
-    });
+function addLanguageServer(root: Command, { perform, inputs, io }: Stage): void {
+  command(root, "language-server", "the Language Server Protocol on standard input and output, for editors", [
+    "language-server",
+  ])
+    .option("--stdio", "the only way that it speaks; many editors ask for it by name")
+    .action(() =>
+      perform("language-server", async () =>
+        (await import("./language-server/serve.js")).languageServer({ inputs, io }),
+      ),
+    );
 }
 
 const collect = (value: string, before: readonly string[] | undefined): string[] => [...(before ?? []), value];

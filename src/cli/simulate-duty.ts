@@ -21,7 +21,7 @@ import { steadyJson } from "./json/steady.js";
 import { type Outcome, UsageError } from "./outcome.js";
 import { plantAt } from "./plant.js";
 import { progressOn } from "./progress.js";
-import { settingsFrom } from "./settings.js";
+import { settingsBeside } from "./settings.js";
 import type { SimulateOptions } from "./simulate-options.js";
 import { cautionsText, regulatedText } from "./text/regulated.js";
 import { statesText } from "./text/states.js";
@@ -36,8 +36,8 @@ export async function simulateDuty(
 ): Promise<Outcome> {
   if (isClosed(network))
     throw new UsageError("a closed vessel has no steady state to look for: follow it with --transient");
-  const duty = dutyFor(inputs, options.duty ?? "", network);
-  const plant = plantAt(network, { ...networkSettings(duty), ...settingsFrom(network, options.set, duty) });
+  const { set, duty } = settingsBeside(network, options.set, dutyFor(inputs, options.duty ?? "", network));
+  const plant = plantAt(network, { ...networkSettings(duty), ...set });
   const progress = progressOn(io);
   const prediction = predict(plant, duty, {}, ({ together, missing }) =>
     progress.say(

@@ -15,7 +15,7 @@ import { type Outcome, UsageError } from "./outcome.js";
 import { plantAt } from "./plant.js";
 import { progressOn } from "./progress.js";
 import { inputNamed, rangeFrom } from "./ranges.js";
-import { settingsFrom } from "./settings.js";
+import { settingsBeside } from "./settings.js";
 import type { SimulateOptions } from "./simulate-options.js";
 import { branchesText } from "./text/branches.js";
 import { blocks } from "./text/table.js";
@@ -27,7 +27,7 @@ export async function simulateStates(
   over: string,
   { inputs, io }: Context,
 ): Promise<Outcome> {
-  const duty = dutyFor(inputs, options.duty ?? "", network);
+  const { set, duty } = settingsBeside(network, options.set, dutyFor(inputs, options.duty ?? "", network));
   const option = `--states '${over}'`;
   const equals = over.indexOf("=");
   if (equals < 0) throw new UsageError(`${option}: write it like --states "feed.temperature=20 degC..80 degC"`);
@@ -35,7 +35,6 @@ export async function simulateStates(
   if (ending !== undefined && !["csv", "svg", "png"].includes(ending)) {
     throw new UsageError(`-o '${options.output}': write to .csv, .svg or .png`);
   }
-  const set = settingsFrom(network, options.set, duty);
   const operation: Operation = { network, duty, values: set, kinetics: new Map() };
   const input = inputNamed(over.slice(0, equals).trim(), inputsOf(operation), "--states");
   const { from, to, unit } = rangeFrom(over.slice(equals + 1).trim(), input, option);

@@ -23,7 +23,7 @@ import { dutyFor } from "./duty-for.js";
 import { transientJson } from "./json/transient.js";
 import { type Outcome, UsageError } from "./outcome.js";
 import { plantAt } from "./plant.js";
-import { requirePlace, settingsFrom } from "./settings.js";
+import { requirePlace, settingsBeside } from "./settings.js";
 import type { SimulateOptions } from "./simulate-options.js";
 import { curvesOn } from "./text/plot.js";
 import { blocks } from "./text/table.js";
@@ -36,8 +36,8 @@ export async function simulateTransient(
   options: SimulateOptions,
   { inputs, io }: Context,
 ): Promise<Outcome> {
-  const duty = dutyFor(inputs, options.duty ?? "", network, true);
-  const plant = plantAt(network, { ...networkSettings(duty), ...settingsFrom(network, options.set, duty) });
+  const { set, duty } = settingsBeside(network, options.set, dutyFor(inputs, options.duty ?? "", network, true));
+  const plant = plantAt(network, { ...networkSettings(duty), ...set });
   for (const name of options.at ?? []) requirePlace(name, plant.exit, "--at");
   if (options.funnel) return (await import("./simulate-funnel.js")).simulateFunnel(plant, duty, options, { io });
   const clock = clockFrom(options, network.units.time, () => {
@@ -59,7 +59,7 @@ export async function simulateTransient(
       : await drawnAs(output, (drawn) => plotTransient(plant, duty, run, shown, drawn));
     io.write(output, made);
   }
-  const diverted = run.stopped ? undefined : windows(network, duty, options);
+  const diverted = run.stopped ? undefined : windows({ network, duty, values: set, kinetics: new Map() }, options);
   const { stopped, balance } = run;
   const open = balance !== undefined && balance.off > closes;
   return {
@@ -104,18 +104,16 @@ export async function simulateTransient(
 
 /** When to divert, from draws of all that has a `±`, where that is asked. */
 function windows(
-  network: Network,
-  duty: Duty,
-  { draws, delay, set }: SimulateOptions,
+  operation: Operation,
+  { draws, delay }: SimulateOptions,
 ): { found: DiversionWindow[]; delay: number } | undefined {
   if (draws === undefined) {
     if (delay !== undefined) throw new UsageError("--delay goes with --draws");
     return undefined;
   }
-  if (!asksForTime(duty))
+  if (!asksForTime(operation.duty))
     throw new UsageError("--draws needs a limit, such as `report: [time A at product above 0.2 mol/L]`");
-  const operation: Operation = { network, duty, values: settingsFrom(network, set, duty), kinetics: new Map() };
-  const { settings } = drawsOf(network, undefined, draws, seed);
+  const { settings } = drawsOf(operation.network, undefined, draws, seed);
   const late = delay === undefined ? 0 : oneTime(delay, "--delay", '"30 s"').si;
   return { found: diversionWindows(operation, rowsFor(operation, settings, seed), late), delay: late };
 }

@@ -22,7 +22,7 @@ import { dutyFor } from "./duty-for.js";
 import { InputError, type Outcome, UsageError } from "./outcome.js";
 import { plantAt } from "./plant.js";
 import { progressOn } from "./progress.js";
-import { settingsFrom } from "./settings.js";
+import { settingsBeside } from "./settings.js";
 import { aimOutcome } from "./sweep-aim.js";
 import type { Asked, SweepOptions } from "./sweep-options.js";
 import { overOutcome } from "./sweep-over.js";
@@ -46,8 +46,7 @@ export async function sweepCommand(file: string, options: SweepOptions, context:
 
 function ask(file: string, options: SweepOptions, { inputs, io }: Context): Asked {
   const network = inputs.document(file, parseNetwork);
-  const duty = dutyFor(inputs, options.duty, network);
-  const set = settingsFrom(network, options.set, duty);
+  const { set, duty } = settingsBeside(network, options.set, dutyFor(inputs, options.duty, network));
   const plant = compile(network, set).plant ?? plantAt(network, set);
   inputs.accept(uncarried(plant, "reaction"));
   const trials = (options.trial ?? []).map((path) => inputs.document(path, parseTrial));

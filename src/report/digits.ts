@@ -19,6 +19,9 @@ export function atDecimals(x: number, decimals: number): string {
   return x < 0 && Number(words) !== 0 ? `\u2212${words}` : words;
 }
 
+/** In place of an interval, where no file and no fit gives one: both ends are the value. */
+export const noSpread = "no ± given";
+
 /** "82.3 (80.1 to 84.2)" with the digits that the interval supports; three digits where none is given or NaN says that there is none. */
 export function estimateWords({ value, low, high }: Estimate): { readonly value: string; readonly interval: string } {
   if (value === undefined || Number.isNaN(value)) return { value: "not estimable", interval: "" };
@@ -27,7 +30,7 @@ export function estimateWords({ value, low, high }: Estimate): { readonly value:
     return { value: formatNumber(value, 3), interval: "not estimable" };
   }
   const half = (high - low) / 2;
-  if (!(half > 0)) return { value: formatNumber(value, 4), interval: "exact" };
+  if (!(half > 0)) return { value: formatNumber(value, 4), interval: noSpread };
   const decimals = decimalsFor(half);
   return {
     value: atDecimals(value, decimals),
@@ -40,7 +43,7 @@ export function estimateLine(estimate: Estimate): string {
   const { value, interval } = estimateWords(estimate);
   const withUnit =
     value === "not estimable" || estimate.unit === "" ? value : `${value}\u2009${typeset(estimate.unit)}`;
-  return interval === "" || interval === "exact" ? withUnit : `${withUnit} (${interval})`;
+  return interval === "" || interval === noSpread ? withUnit : `${withUnit} (${interval})`;
 }
 
 /** The same of a figure of a duty: a time beyond a limit without an end is told in words. */

@@ -64,6 +64,8 @@ export interface StudyReport {
   readonly decisions: readonly string[];
   /** Figures of duties over their inputs. */
   readonly sweeps: readonly Figure[];
+  /** Where they jump, and where there are further steady states. */
+  readonly sweepSays?: readonly string[];
   readonly aims: readonly ReportAim[];
   readonly assumptions: readonly string[];
   readonly cautions: CautionTriggers;

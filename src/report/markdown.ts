@@ -1,6 +1,7 @@
 import { cautionsFor } from "./cautions.js";
 import { chance, estimateLine, figureLine } from "./digits.js";
 import type { StudyReport } from "./input.js";
+import { withUnit } from "./sections/rows.js";
 
 /** The study on one page of Markdown: the answer, what it makes, what was fitted, which rivals, cautions, provenance. */
 export function writeSummary(report: StudyReport): string {
@@ -17,8 +18,14 @@ export function writeSummary(report: StudyReport): string {
     bullets("When to divert", report.diversion ?? []),
     table(
       "Changes",
-      ["change", "quantity", "value (95 %)", "chance of being better"],
-      report.changes.map((c) => [c.name, c.quantity, figureLine(c.quantity, c.estimate), chance(c.probabilityBetter)]),
+      ["change", "quantity", "today", "value (95 %)", "chance of being better"],
+      report.changes.map((c) => [
+        c.name,
+        c.quantity,
+        withUnit(c.today, c.estimate.unit),
+        figureLine(c.quantity, c.estimate),
+        chance(c.probabilityBetter),
+      ]),
     ),
     bullets(
       "What it takes",
@@ -35,6 +42,10 @@ export function writeSummary(report: StudyReport): string {
       ["network", "weight", "why"],
       report.rivals.map((r) => [r.network, chance(r.weight), r.verdict]),
     ),
+    bullets(
+      "Tests",
+      report.data.map((d) => `${d.trial}, at ${d.at}: grade ${d.grade}`),
+    ),
     bullets("Findings", firstFindings(report)),
     bullets(
       "Cautions",
@@ -48,9 +59,12 @@ export function writeSummary(report: StudyReport): string {
 /** As many findings as leave room on the page; all of them, and what the data do not support, are in the report. */
 const mostFindings = 5;
 
-function firstFindings({ findings }: StudyReport): string[] {
-  const told = findings.slice(0, mostFindings).map((f) => `${f.message} (${f.evidence})`);
-  const more = findings.length - told.length;
+function firstFindings({ findings, answer }: StudyReport): string[] {
+  const answered = answer.map((a) => a.says.toLowerCase()).join(" ");
+  // What the answer says already is not said twice on one page.
+  const others = findings.filter((f) => !answered.includes(f.message.toLowerCase()));
+  const told = others.slice(0, mostFindings).map((f) => `${f.message} (${f.evidence})`);
+  const more = others.length - told.length;
   return more > 0 ? [...told, `${more} more in the report`] : told;
 }
 

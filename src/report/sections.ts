@@ -13,7 +13,12 @@ import { rivalsSection } from "./sections/rivals.js";
 
 /** The parts of a report in reading order, after the answer. One function each; empty where there is nothing to say. */
 export const sections: readonly ((report: StudyReport) => Html)[] = [
-  ({ vessel }) => section("vessel", "The vessel as fitted", vessel ? [figures([vessel])] : []),
+  ({ vessel, parameters }) =>
+    section(
+      "vessel",
+      parameters.length > 0 ? "The vessel as fitted" : "The vessel as written",
+      vessel ? [figures([vessel])] : [],
+    ),
   dataSection,
   ({ curves, analyses }) => section("curves", "Measured and fitted", [figures(curves), analysesTable(analyses ?? [])]),
   findingsSection,

@@ -2,8 +2,10 @@ import { type ChildProcess, spawn } from "node:child_process";
 import { mkdirSync, mkdtempSync, readdirSync, readFileSync, rmSync, writeFileSync } from "node:fs";
 import { tmpdir } from "node:os";
 import { join } from "node:path";
+import { pathToFileURL } from "node:url";
 import { afterAll, beforeAll, describe, expect, test } from "vitest";
 import { buildProgram, keepCompiled } from "../../.build/program.mjs";
+import { framed, MessageReader } from "../../src/cli/language-server/messages.js";
 import { files } from "./vessels.js";
 
 // The program as it is shipped: one bundle, a process of its own.
@@ -124,4 +126,37 @@ describe("the program as a process", () => {
     expect(status).toBe(130);
     expect(out).toContain("interrupted: best so far");
   });
+});
+
+test("language-server speaks its protocol on standard input and output, and nothing else", async () => {
+  const child = start(["language-server"]);
+  const end = ended(child);
+  const send = (message: object) => child.stdin?.write(framed(message));
+  const uri = pathToFileURL(join(folder, "tank.yaml")).href;
+  send({ id: 1, method: "initialize", params: { capabilities: {}, processId: null, rootUri: null } });
+  send({ method: "initialized", params: {} });
+  send({
+    method: "textDocument/didOpen",
+    params: { textDocument: { uri, languageId: "yaml", version: 1, text: "network: A\n" } },
+  });
+  send({ id: 2, method: "textDocument/hover", params: { textDocument: { uri }, position: { line: 0, character: 2 } } });
+  send({ id: 3, method: "shutdown" });
+  send({ method: "exit" });
+  const { status, out, err } = await end;
+  expect([status, err]).toEqual([0, ""]);
+  const reader = new MessageReader();
+  const got = reader.take(Buffer.from(out));
+  expect(out).toBe(got.map((m) => framed(m as object)).join(""));
+  expect(got.map((m) => m?.id ?? m?.method)).toEqual([1, "textDocument/publishDiagnostics", 2, 3]);
+  const [, told, hover] = got as {
+    params?: { diagnostics: { code: string }[] };
+    result?: { contents: { value: string } };
+  }[];
+  expect(told.params?.diagnostics.map((d) => d.code)).toContain("missing-format");
+  expect(hover.result?.contents.value).toContain("**network**");
+  // a client that goes away without a word leaves nothing behind
+  const lost = start(["language-server"]);
+  const gone = ended(lost);
+  lost.stdin?.end();
+  expect((await gone).status).toBe(1);
 });

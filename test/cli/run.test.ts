@@ -53,9 +53,6 @@ describe("wrong usage ends with 2, a hint and no stack", () => {
     expect(at(document, "backmix")).toBeTypeOf("string");
     expect(at(document, "inputs")).toBeInstanceOf(Array);
   });
-  test("says which command or option is not there yet", async () => {
-    expect((await backmix(["language-server", "x"])).err).toContain("'language-server' is not in this version");
-  });
   test("a wrong name is answered with the nearest", async () => {
     const { err } = await backmix(["simulate", "tank.yaml", "--pulse", "fed"], { files });
     expect(err).toContain("did you mean 'feed'?");

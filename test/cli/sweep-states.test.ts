@@ -147,7 +147,7 @@ describe("several steady states in a sweep", () => {
       return ran.err.replace(/\s+/g, " ");
     };
     expect(await err("simulate", "tank.yaml", "--duty", "hot.yaml", "--set", "k=2 1/min")).toContain(
-      "'k' belongs to the duty 'Cold feed'",
+      "'k' follows the temperature, and heat balances need to know how",
     );
     expect(await err("sweep", "tank.yaml", "--duty", "hot.yaml", "--over", "temperature=300 K..310 K")).toContain(
       "a duty has one where it says `temperature:`",

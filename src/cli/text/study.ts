@@ -85,8 +85,7 @@ function predictionsTable({ predictions }: StudyResult): string {
   if (predictions.length === 0) return "";
   const rows = predictions.map(({ duty, name, value, unit, interval95, bounds, rival }): Row => {
     const shown = people(name, unit);
-    const bound = (si: number | undefined): string =>
-      si === undefined ? "" : shown.name === "%" ? formatQuantity(si, shown) : formatNumber(inUnit(si, shown));
+    const bound = (si: number | undefined): string => (si === undefined ? "" : formatQuantity(si, shown, 3));
     const ends = [bound(bounds?.segregated), bound(bounds?.maximumMixedness)];
     return { by: rival.network.title, cells: [duty.title, name, estimate(name, value, interval95, shown), ...ends] };
   });
@@ -110,7 +109,7 @@ function changesTable({ changes }: StudyResult): string {
     return figures.map(({ name, unit, before, value, interval95, probabilityBetter }) => {
       const shown = people(name, unit);
       const better = probabilityBetter === undefined ? "" : chance(probabilityBetter);
-      const today = formatNumber(inUnit(before, shown), 3);
+      const today = formatQuantity(before, shown, 3);
       return { by, cells: [change.title, name, today, estimate(name, value, interval95, shown), better] };
     });
   });

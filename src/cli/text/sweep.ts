@@ -1,4 +1,4 @@
-import { estimateWords } from "../../report/digits.js";
+import { estimateWords, noSpread } from "../../report/digits.js";
 import { dutyCautions } from "../../report/duty-cautions.js";
 import { sweepJumpWords } from "../../report/study/jump-words.js";
 import { sweepStatesWords } from "../../report/study/states-words.js";
@@ -52,7 +52,7 @@ function cellOf({ figures, intervals }: SweepPoint, k: number, unit: Unit | unde
   const [low, high] = (intervals[k] ?? []).map((v) => inUnit(v, unit));
   if (low === undefined) return formatNumber(inUnit(f.value, unit));
   const { value, interval } = estimateWords({ value: inUnit(f.value, unit), unit: "", low, high });
-  return interval === "exact" ? value : `${value} (${interval})`;
+  return interval === noSpread ? value : `${value} (${interval})`;
 }
 
 /** Points without a vessel, by their reason. */

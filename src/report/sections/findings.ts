@@ -2,7 +2,9 @@ import { type Html, paragraph, prose, section, terms } from "../html.js";
 import type { ReportFinding, StudyReport } from "../input.js";
 
 /** What the tests show, with evidence, what could fake it and the next check; then what they do not show. */
-export function findingsSection({ findings, notSupported }: StudyReport): Html {
+export function findingsSection({ findings, notSupported, data: tested }: StudyReport): Html {
+  // Where nothing was tested there is nothing to find.
+  if (tested.length === 0 && findings.length === 0) return "";
   const found =
     findings.length > 0 ? findings.map(findingBlock) : [paragraph("The data show nothing that needs a finding.")];
   const told = notSupported.map(({ what, says }) => [what, says.join(". ")] as const);

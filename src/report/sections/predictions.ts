@@ -7,19 +7,25 @@ import { estimateRow, grouped, withUnit } from "./rows.js";
 /** What the vessel makes under each duty: value, interval, where mixing would put it. */
 export function predictionsSection(report: StudyReport): Html {
   const { predictions, states = [], diversion = [], along } = report;
+  const bounded = predictions.some((p) => p.bounds !== undefined);
   const driven = predictions.some((p) => (p.drivers?.length ?? 0) > 0);
   const rows = predictions.map((p) => {
     const { bounds } = p;
     const between = bounds
       ? `${formatNumber(bounds.segregated, 3)} to ${withUnit(bounds.maximumMixedness, p.estimate.unit)}`
       : "";
-    return [{ words: p.duty, under: p.name }, ...valueCells(p), between, ...(driven ? [driverWords(p)] : [])];
+    return [
+      { words: p.duty, under: p.name },
+      ...valueCells(p),
+      ...(bounded ? [between] : []),
+      ...(driven ? [driverWords(p)] : []),
+    ];
   });
   const columns = [
     { head: "duty" },
     { head: "value", number: true },
     { head: "95 % interval", number: true },
-    { head: "segregated to maximum mixedness", number: true },
+    ...(bounded ? [{ head: "segregated to maximum mixedness", number: true }] : []),
     ...(driven ? [{ head: "what is unsure rests with" }] : []),
   ];
   return section("predictions", "What it makes", [

@@ -36,14 +36,22 @@ export function sweepFigures(result: StudyResult): Figure[] {
       .map((says) => ` Partly ${says.charAt(0).toLowerCase()}${says.slice(1)}`)
       .join("");
     const apart = plotSweepApart(found, { untitled: true, width: columnWidth, height: 170 });
-    const states = [...sweepJumpWords(found), ...sweepStatesWords(found)].map((s) => ` ${s}`).join("");
     return apart.map(({ of, made }, i) => ({
       name: apart.length === 1 ? `sweep-${k + 1}` : `sweep-${k + 1}-${i + 1}`,
       ...made,
-      caption: `${asked.duty.title}: ${inBrackets(of)} over ${names}${about(result, answer)}${ownFlow ? "" : beyondWords(result.study, asked.duty)}; dots are what was computed${band}.${beyond}${i === 0 ? `${gaps}${states}` : ""}`,
+      caption: `${asked.duty.title}: ${inBrackets(of)} over ${names}${about(result, answer)}${ownFlow ? "" : beyondWords(result.study, asked.duty)}; dots are what was computed${band}.${beyond}${i === 0 ? gaps : ""}`,
     }));
   });
 }
+
+/** Where a sweep jumps or passes further steady states, in sentences. */
+export const sweepSays = (result: StudyResult): string[] =>
+  result.sweeps.flatMap((answer) => {
+    const { found, asked } = answer;
+    const said = found ? [...sweepJumpWords(found), ...sweepStatesWords(found)] : [];
+    const over = asked.over.map((r) => r.name).join(" and ");
+    return said.length > 0 ? [`${asked.duty.title} over ${over}${about(result, answer)}: ${said.join(" ")}`] : [];
+  });
 
 /** Aims with their answers, in the order of the study, and sweeps and aims that could not be asked. */
 export function reportAims(result: StudyResult): ReportAim[] {

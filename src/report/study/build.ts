@@ -3,7 +3,7 @@ import type { Provenance, ReportParameter, StudyReport } from "../input.js";
 import { alongFigures } from "./along-figures.js";
 import { analysesOf } from "./analyses.js";
 import { answerOf } from "./answer.js";
-import { reportAims, sweepFigures } from "./asked.js";
+import { reportAims, sweepFigures, sweepSays } from "./asked.js";
 import { changeRows, severalSurvive } from "./change-rows.js";
 import { dataQuality } from "./data.js";
 import { decisionWords } from "./decision-words.js";
@@ -61,6 +61,7 @@ export function reportOf(result: StudyResult, provenance: Omit<Provenance, "seed
     changes: changeRows(result),
     decisions: decisionWords(result),
     sweeps: sweepFigures(result),
+    sweepSays: sweepSays(result),
     aims: reportAims(result),
     assumptions: assumptionsOf(result),
     cautions: cautionsOf(result, tested.extrapolated),

@@ -17,22 +17,26 @@ import { estimate, percent } from "./estimate.js";
 import { intervalOf } from "./interval-of.js";
 import { traitsOf } from "./traits.js";
 
-/** The vessel as fitted: what the reader should look at is marked, what the fit moved is underlined and bears its interval. */
+/** The vessel as fitted, or as written where nothing was fitted: what the reader should look at is marked, what the fit moved is underlined and bears its interval. */
 export function vesselFigure(ranked: Ranked, trials: readonly Trial[]): Figure | undefined {
   const { plant, fit, rival } = ranked;
-  if (!plant || !fit) return undefined;
+  if (!plant) return undefined;
   const sheet = flowSheet(plant, {
     injections: trials.flatMap((t) => t.injections.map((i) => i.at)),
     probes: trials.flatMap((t) => t.readings.map((r) => r.at)),
-    notes: new Map([...volumeNotes(plant, fit), ...flowNotes(plant, fit)]),
-    accents: new Set(traitsOf(plant, fit).map((t) => t.place)),
+    ...(fit
+      ? {
+          notes: new Map([...volumeNotes(plant, fit), ...flowNotes(plant, fit)]),
+          accents: new Set(traitsOf(plant, fit).map((t) => t.place)),
+        }
+      : {}),
   });
   const hold = holdUp(plant.network.basis);
   return {
     name: "vessel",
     drawing: drawNetwork(aggregated(sheet, outermost(plant.network)), { untitled: true }),
     data: { table: sheetTable(sheet) },
-    caption: `The vessel as fitted by '${rival.network.title}', at the flow of the file. Area is ${hold}, width is flow; underlined is what the fit moved, with what it leaves possible (95 %).`,
+    caption: `The vessel ${fit ? "as fitted by" : "as written in"} '${rival.network.title}', at the flow of the file. Area is ${hold}, width is flow${fit ? "; underlined is what the fit moved, with what it leaves possible (95 %)" : ""}.`,
   };
 }
 
