@@ -28,6 +28,16 @@ export function recorded<T>(record: () => T): T | WhyNot {
   }
 }
 
+/** A name that the day of a trial sets. Where it is a fact that a fit may move, the number that it is moved by is an input. */
+export interface OnDay {
+  readonly name: string;
+  readonly value: Value;
+  readonly fact?: string;
+}
+
+/** Facts that are inputs besides names, and by how much they are moved where the recording is made, SI. */
+export type FactInputs = ReadonlyMap<string, number>;
+
 /** A tape with the names of a network on it. */
 export class Recorder {
   readonly tape = new Tape();
@@ -42,22 +52,40 @@ export class Recorder {
   private env: Float64Array = new Float64Array(0);
   private slots: readonly Slot[] = [];
 
-  /** @param inputs  names that are set from outside, in the order of the inputs */
+  private readonly facts: ReadonlyMap<string, Slot>;
+
+  /**
+   * @param inputs  names that are set from outside, in the order of the inputs
+   * @param facts   inputs after them
+   */
   constructor(
     private readonly network: Network,
     readonly inputs: readonly string[],
     settings: Settings,
-    onDay: readonly (readonly [string, Value])[],
+    onDay: readonly OnDay[],
+    facts: FactInputs = new Map(),
   ) {
     const set = new Map<string, Slot>(inputs.map((name) => [name, this.tape.input()]));
+    this.facts = new Map([...facts.keys()].map((key) => [key, this.tape.input()]));
     this.names(settings, set);
     if (onDay.length === 0) return;
     const day = { ...settings };
-    for (const [name, value] of onDay) {
-      day[name] = value.of(this.env);
-      set.set(name, this.value(value));
+    for (const { name, value, fact } of onDay) {
+      day[name] = value.of(this.env) + (facts.get(fact ?? "") ?? 0);
+      set.set(name, this.fact(value, fact));
     }
     this.names(day, set);
+  }
+
+  /** The facts that are inputs, in their order. */
+  get factInputs(): readonly string[] {
+    return [...this.facts.keys()];
+  }
+
+  /** A value, moved by what its fact is. */
+  fact(value: Value, key: string | undefined): Slot {
+    const by = key === undefined ? undefined : this.facts.get(key);
+    return by === undefined ? this.value(value) : this.tape.add(this.value(value), by);
   }
 
   /** A value made of names. */

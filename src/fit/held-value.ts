@@ -1,4 +1,4 @@
-import type { Trial } from "../model/trial.js";
+import { factKey, type Trial } from "../model/trial.js";
 import type { Env, Value } from "../model/value.js";
 import type { Direction } from "./forward.js";
 import { shifted } from "./settings.js";
@@ -27,6 +27,13 @@ export interface Held {
 
 const noNames: ReadonlyMap<string, number> = new Map();
 
+/** The fact that a direction moves; undefined where it is none that recordings know. */
+function keyOf({ day, dose, line }: Omit<Direction, "names">): string | undefined {
+  if (day) return factKey.day([...day.keys()][0]);
+  if (dose) return factKey.dose(dose.injection);
+  return line && factKey.line(line.reading, line.delay === 0 ? "lag" : "delay");
+}
+
 /** A value of a trial with a `±`; nothing where it has none. */
 export function heldValue(
   value: Value | undefined,
@@ -38,8 +45,12 @@ export function heldValue(
 ): Held[] {
   const sd = value?.sd?.(env) ?? 0;
   if (!value || !(sd > 0)) return [];
+  const key = keyOf(moves);
   const move = (facts: Facts, by: number): void => {
-    facts.trials[trial] = change(facts.trials[trial], shifted(value, by));
+    const before = facts.trials[trial];
+    const { moved: _, ...after } = change(before, shifted(value, by));
+    const moved = key && { of: before.moved?.of ?? before, by: new Map(before.moved?.by).set(key, by) };
+    facts.trials[trial] = moved ? { ...after, moved } : after;
   };
   const direction = { names: noNames, ...moves };
   return [{ says, sd, move, direction: (t) => (t === trial ? direction : undefined) }];

@@ -4,45 +4,55 @@ import { Part, type Plant, type Settings } from "../compile/plant.js";
 import { type PlantSlope, PlantSlopes } from "../compile/plant-slopes.js";
 import { ValueSlopes } from "../compile/value-slopes.js";
 import { isClosed, type Network } from "../model/network.js";
-import type { Trial } from "../model/trial.js";
-import type { Value } from "../model/value.js";
+import { factKey, type Trial } from "../model/trial.js";
 import { RefusedError } from "../problems/refused.js";
 import type { Replay } from "../simulate/replay.js";
 import { trialResponse } from "../simulate/trial.js";
 import { hasSlopes, type Move, trialSlopes } from "../simulate/trial-slopes.js";
 import type { At, Direction, ForwardModel, WantedTimes } from "./forward.js";
-import { Replays } from "./replays.js";
+import { Replays, setOnDay } from "./replays.js";
 import { settingsOfDay } from "./settings.js";
 
-/** Names that a trial sets, with their values made of the network's names. */
-export const setOnDay = (trial: Trial): (readonly [string, Value])[] => [
-  ...[...trial.flows].map(([feed, v]) => [`${feed}.flow`, v] as const),
-  ...trial.with,
-];
-
-/** Values in the order of a recording's inputs; undefined where others are set. */
-function inputsOf(names: readonly string[], values: Settings): Float64Array | undefined {
-  const inputs = new Float64Array(names.length);
+/** Values in the order of a recording's inputs, facts as the trial has them moved; undefined where others are set. */
+function inputsOf({ inputs: names, facts }: Replay, values: Settings, { moved }: Trial): Float64Array | undefined {
+  const inputs = new Float64Array(names.length + facts.length);
   for (let i = 0; i < names.length; i++) {
     const x = values[names[i]];
     if (x === undefined) return undefined;
     inputs[i] = x;
   }
+  if (moved) for (let k = 0; k < facts.length; k++) inputs[names.length + k] = moved.by.get(facts[k]) ?? 0;
   return Object.keys(values).length === names.length ? inputs : undefined;
 }
 
 /** How the inputs move, by input and direction; undefined where more than they do. */
-function seedsOf(names: readonly string[], directions: readonly Direction[]): Float64Array | undefined {
-  const seeds = new Float64Array(names.length * directions.length);
-  for (const [d, { names: moved, day, dose, line }] of directions.entries()) {
-    if (day || dose || line) return undefined;
-    for (const [name, slope] of moved) {
-      const i = names.indexOf(name);
-      if (i < 0) return undefined;
-      seeds[i * directions.length + d] = slope;
+function seedsOf({ inputs: names, facts }: Replay, directions: readonly Direction[]): Float64Array | undefined {
+  const count = directions.length;
+  const seeds = new Float64Array((names.length + facts.length) * count);
+  for (const [d, direction] of directions.entries()) {
+    const moves = [...direction.names].map(([name, slope]) => ({ at: names.indexOf(name), slope }));
+    for (const [key, slope] of factMoves(direction)) {
+      const k = facts.indexOf(key);
+      moves.push({ at: k < 0 ? k : names.length + k, slope });
+    }
+    for (const { at, slope } of moves) {
+      if (at < 0) return undefined;
+      seeds[at * count + d] = slope;
     }
   }
   return seeds;
+}
+
+/** What of a trial's facts a direction moves, SI per unit. */
+function factMoves({ day, dose, line, changed }: Direction): [string, number][] {
+  if (changed) return [["what no recording knows", 1]];
+  return [
+    ...[...(day ?? [])].map(([name, slope]): [string, number] => [factKey.day(name), slope]),
+    ...(dose ? [[factKey.dose(dose.injection), dose.slope] as [string, number]] : []),
+    ...(["delay", "lag"] as const).flatMap((part): [string, number][] =>
+      line && line[part] !== 0 ? [[factKey.line(line.reading, part), line[part]]] : [],
+    ),
+  ];
 }
 
 /** Plants that are kept: those of a point are asked for again, once for every trial. */
@@ -67,13 +77,13 @@ export function networkModel(network: Network): ForwardModel {
     const isSet = (name: string): boolean => name in values && !shifted.has(name);
     const env = trial.flows.size + trial.with.size > 0 ? evaluateNames(network, values) : plant.env;
     const onDay = setOnDay(trial);
-    const set = new Set(onDay.map(([name]) => name));
+    const set = new Set(onDay.map(({ name }) => name));
     const plants = new PlantSlopes(network, plant, plan, derived);
     return directions.map(({ names, day }): { plant: PlantSlope | undefined } | undefined => {
       if (names.size === 0 && !day) return { plant: undefined };
       const before = derived.names(env, isSet, names);
       const moved = new Map(names);
-      for (const [name, value] of onDay) moved.set(name, derived.along(value, env, before) + (day?.get(name) ?? 0));
+      for (const { name, value } of onDay) moved.set(name, derived.along(value, env, before) + (day?.get(name) ?? 0));
       const slope = set.size > 0 ? derived.names(plant.env, (n) => isSet(n) || set.has(n), moved) : before;
       const along = plants.along(slope);
       return along && { plant: along };
@@ -85,7 +95,7 @@ export function networkModel(network: Network): ForwardModel {
   /** By a recording; undefined where none holds. */
   const ask = <T>(trial: Trial, values: Settings, of: (replay: Replay, inputs: Float64Array) => T | undefined) => {
     for (const replay of replays.of(trial)) {
-      const inputs = inputsOf(replay.inputs, values);
+      const inputs = inputsOf(replay, values, trial);
       if (inputs) return of(replay, inputs);
     }
     return undefined;
@@ -99,7 +109,7 @@ export function networkModel(network: Network): ForwardModel {
   ) =>
     ask(trial, values, (replay, inputs) => {
       if (replay.inputs.some((name) => shifted.has(name) && !replay.staysShifted(name))) return undefined;
-      const seeds = directions.length === 0 ? noSeeds : seedsOf(replay.inputs, directions);
+      const seeds = directions.length === 0 ? noSeeds : seedsOf(replay, directions);
       return seeds && replay.run(inputs, wanted, seeds, directions.length);
     });
   const horizonOf = (wanted: WantedTimes): number =>
@@ -111,7 +121,7 @@ export function networkModel(network: Network): ForwardModel {
       if (quick) return quick.curves;
       const plant = plantFor(trial, values);
       if (!plant) return undefined;
-      if (replays.record(trial, values, setOnDay(trial), plant, horizonOf(wanted))) {
+      if (replays.record(trial, values, plant, horizonOf(wanted))) {
         const now = replayed(trial, values, wanted, []);
         if (now) return now.curves;
       }
@@ -148,7 +158,7 @@ export function networkModel(network: Network): ForwardModel {
       const quick = ask(trial, values, (replay, inputs) => replay.delays(inputs));
       if (quick) return quick;
       const plant = plantFor(trial, values);
-      if (plant && replays.record(trial, values, setOnDay(trial), plant, 0)) {
+      if (plant && replays.record(trial, values, plant, 0)) {
         const now = ask(trial, values, (replay, inputs) => replay.delays(inputs));
         if (now) return now;
       }

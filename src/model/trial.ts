@@ -36,9 +36,18 @@ export interface Trial {
   readonly tracer?: Tracer | undefined;
   /** What reacts, where it is no tracer that is followed: then there are no injections. */
   readonly reacting?: Reacting | undefined;
+  /** Where it is another with declared facts moved: that one, and by how much, SI, by `factKey`. */
+  readonly moved?: { readonly of: Trial; readonly by: ReadonlyMap<string, number> };
   /** How the trial's clock is written, for printing its times; undefined where times are elapsed. */
   readonly clock?: ClockFormat | undefined;
 }
+
+/** What a trial declares with a number that a fit may move: a value of the day by its name, a dose or a line by its index. */
+export const factKey = {
+  day: (name: string): string => `day ${name}`,
+  dose: (injection: number): string => `dose ${injection}`,
+  line: (reading: number, part: "delay" | "lag"): string => `line ${reading} ${part}`,
+} as const;
 
 /** A trial of a reaction: what is known of the day. Concentrations as the rate laws count them, SI. */
 export interface Reacting {

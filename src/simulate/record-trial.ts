@@ -3,7 +3,7 @@ import type { Plant } from "../compile/plant.js";
 import type { RecordedPlant } from "../compile/record.js";
 import { NotRecorded, type Recorder, recorded, type WhyNot } from "../compile/recorder.js";
 import { isClosed } from "../model/network.js";
-import type { Injection, Retained, Trial } from "../model/trial.js";
+import { factKey, type Injection, type Retained, type Trial } from "../model/trial.js";
 import type { Slot } from "../numerics/tape.js";
 import { isLevel } from "../units/basis.js";
 import { exact } from "./exact.js";
@@ -53,7 +53,7 @@ const mostStates = 12;
 export function recordTrial(plant: RecordedPlant, trial: Trial): RecordedTrial | WhyNot {
   return recorded(() => {
     const { recorder } = plant;
-    const puts = trial.injections.map((i) => recordPut(plant, trial, i));
+    const puts = trial.injections.map((one, index) => recordPut(plant, trial, one, index));
     return { recorder, puts, tubes: tubesOf(plant) };
   });
 }
@@ -88,19 +88,20 @@ function heldBy({ recorder, plant }: RecordedPlant, retained: readonly Retained[
   };
 }
 
-function recordPut(on: RecordedPlant, trial: Trial, injection: Injection): RecordedPut {
+function recordPut(on: RecordedPlant, trial: Trial, injection: Injection, index: number): RecordedPut {
   const { recorder, plant } = on;
   const { tape } = recorder;
   const entry = plant.entry.get(injection.at);
   if (entry === undefined) throw new RangeError(`no place '${injection.at}' in the network`);
   const drive = unitDrive(injection, trial.tracer?.decay ?? 0);
   const seen = { loss: trial.tracer?.loss ?? 0, held: heldBy(on, trial.tracer?.retained ?? []) };
-  const unrolled = new RecordedUnrolling(on, entry, sizeOf(on, injection, entry), seen);
+  const unrolled = new RecordedUnrolling(on, entry, sizeOf(on, injection, factKey.dose(index), entry), seen);
   const rows = [...unrolled.rows];
   const input = [...unrolled.input];
   const zero = tape.constant(0);
   const passages = trial.readings.flatMap((r, reading) => {
-    const line = (of: "delay" | "lag"): Slot => (r.line[of] ? recorder.value(r.line[of]) : zero);
+    const line = (of: "delay" | "lag"): Slot =>
+      r.line[of] ? recorder.fact(r.line[of], factKey.line(reading, of)) : zero;
     const [late, lag] = [line("delay"), line("lag")];
     const places = r.places.length === 1 ? [{ name: r.at, share: 1 }] : r.places;
     return places.flatMap(({ name, share }) => {
@@ -127,11 +128,11 @@ function recordPut(on: RecordedPlant, trial: Trial, injection: Injection): Recor
 }
 
 /** What the tracer rate is in proportion to. */
-function sizeOf({ recorder, inflow }: RecordedPlant, { form }: Injection, entry: number): Slot {
+function sizeOf({ recorder, inflow }: RecordedPlant, { form }: Injection, fact: string, entry: number): Slot {
   if (form.is === "signal") return inflow[entry];
-  if (form.is === "pulse") return recorder.value(form.amount);
+  if (form.is === "pulse") return recorder.fact(form.amount, fact);
   // A vessel in balance with what came before is left to others.
   if (form.from && recorder.tape.known(recorder.value(form.from)) !== 0) throw new NotRecorded();
-  const level = recorder.value(form.level);
+  const level = recorder.fact(form.level, fact);
   return isLevel(form.level.dimension) ? recorder.tape.multiply(level, inflow[entry]) : level;
 }

@@ -45,6 +45,11 @@ export class Replay {
     return this.recorded.recorder.inputs;
   }
 
+  /** Facts of the trial that are inputs after the names: by how much each is moved, SI. */
+  get facts(): readonly string[] {
+    return this.recorded.recorder.factInputs;
+  }
+
   /** Does an input that is a name's value shifted stay where it is, whatever the other inputs do? */
   staysShifted(name: string): boolean {
     return !this.recorded.recorder.following.has(name);

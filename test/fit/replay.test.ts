@@ -2,7 +2,9 @@ import { describe, expect, test } from "vitest";
 import { compiler } from "../../src/compile/compile.js";
 import type { Settings } from "../../src/compile/plant.js";
 import { recordPlant } from "../../src/compile/record.js";
-import { networkModel, setOnDay } from "../../src/fit/network-model.js";
+import { type Facts, heldFacts, uncertainConstants } from "../../src/fit/held.js";
+import { networkModel } from "../../src/fit/network-model.js";
+import { setOnDay } from "../../src/fit/replays.js";
 import { settingsOfDay } from "../../src/fit/settings.js";
 import type { Network } from "../../src/model/network.js";
 import type { Trial } from "../../src/model/trial.js";
@@ -181,6 +183,53 @@ test("facts that are shifted: derivatives as compiled, whether or not they follo
       if (!a || !b) throw new Error("no derivative");
       const peak = Math.max(...b.map(Math.abs));
       for (let i = 0; i < a.length; i++) expect(Math.abs(a[i] - b[i])).toBeLessThan(1e-9 * peak);
+    });
+  }
+});
+
+test.each([
+  ["a pulse through a line", "{at: feed, pulse: 50 g ± 1 %, start: 0 min, lasting: 2 min}"],
+  ["a step", "{at: feed, step: 2 g/L ± 2 %, start: 1 min}"],
+  ["a dosing rate", "{at: b, step: 3 g/min ± 2 %, start: 1 min, lasting: 20 min}"],
+])("facts of the day that are moved: curves and derivatives as compiled: %s", (_, injection) => {
+  const network = networkOf(
+    vessel(
+      "  a: {kind: tubular, volume: v, to: b}\n  b: {kind: stirred, volume: total - v, to: out, exchange: {c: q}}\n  c: {kind: stirred, volume: 10 L}",
+      "constants: {total: 100 L}\nparameters: {v: {value: 30 L, between: [1 L, 90 L]}, q: {value: 2 L/min, between: [0.1 L/min, 9 L/min]}}\n",
+    ),
+  );
+  const line = "    line: {delay: 0.31 min ± 0.05 min, lag: 0.4 min ± 0.1 min}\n";
+  const trial = trialWith(injection, line, "flows: {feed: 11 L/min ± 1 %}\nwith: {total: 104 L ± 2 L}\n");
+  const values = { v: 0.03, q: 3e-5 };
+  const env = compiler(network).compile({}).plant?.env ?? [];
+  const facts = [
+    ...heldFacts(network, [trial], new Set(["v", "q"]), env),
+    ...uncertainConstants(network, [trial], env),
+  ];
+  expect(facts.map((f) => f.says.replace(/ of .*/, "")).sort()).toHaveLength(5);
+  const model = networkModel(network);
+  model.keep?.([trial]);
+  const wanted = [{ time: times }];
+  for (const by of [0, 0.7, -1.2]) {
+    const moved: Facts = { trials: [trial], values: { ...values } };
+    if (by !== 0) for (const [k, f] of facts.entries()) f.move(moved, by * f.sd * Math.cos(k));
+    const [day] = moved.trials;
+    expect(day.moved?.of).toBe(by === 0 ? undefined : trial);
+    const at = { values: moved.values, shifted: new Set<string>() };
+    const directions = [...facts.map((f) => f.direction(0)), { names: new Map([["v", 1]]) }].filter(
+      (d) => d !== undefined,
+    );
+    const other = networkModel(network);
+    const [curve, compiled] = [model, other].map((m) => m.respond(day, values, wanted)?.[0] ?? new Float64Array(0));
+    const [kept, anew] = [model, other].map((m) => m.slopes?.(day, at, wanted, directions)?.slopes);
+    const compare = (a: Float64Array, b: Float64Array): void => {
+      const peak = Math.max(...b.map(Math.abs));
+      expect(a).toHaveLength(b.length);
+      for (let i = 0; i < a.length; i++) expect(Math.abs(a[i] - b[i])).toBeLessThan(1e-9 * peak);
+    };
+    compare(curve, compiled);
+    directions.forEach((_, d) => {
+      compare(kept?.[d]?.[0] ?? new Float64Array(0), anew?.[d]?.[0] ?? new Float64Array(0));
     });
   }
 });
