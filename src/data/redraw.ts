@@ -3,7 +3,7 @@ import type { Random } from "../numerics/random.js";
 import { noiseOf } from "./noise.js";
 
 /**
- * A long log brought down to so many points or a few more by means over neighbours; what lies before the injection stays apart from what
+ * A long log brought down to about so many points by means over neighbours, over more of them the later; what lies before the injection stays apart from what
  * lies after it. Readings of which some are beyond a limit stay as they are.
  */
 export function shortened(trial: Trial, reading: Reading, points: number): Reading {
@@ -11,10 +11,16 @@ export function shortened(trial: Trial, reading: Reading, points: number): Readi
   const many = Math.floor((series?.time.length ?? 0) / points);
   if (!series || many < 2 || censored?.some((f) => f !== 0)) return reading;
   const begins = trial.injections[0]?.start ?? Number.NEGATIVE_INFINITY;
+  const first = Math.max(
+    0,
+    series.time.findIndex((t) => t >= begins),
+  );
   const bins: [number, number][] = [];
   for (let i = 0; i < series.time.length; ) {
+    const early = series.time[i] < begins;
+    const width = early ? many : Math.max(1, Math.floor((3 * many * (i - first)) / (series.time.length - first)));
     let to = i + 1;
-    while (to < series.time.length && to - i < many && series.time[to] < begins === series.time[i] < begins) to++;
+    while (to < series.time.length && to - i < width && series.time[to] < begins === early) to++;
     bins.push([i, to]);
     i = to;
   }

@@ -30,3 +30,24 @@ test("no choice of three from nine is much better than the one found, and most a
 test("the information of independent unknowns is the sum of their logarithms", () => {
   expect(informationOf([Float64Array.of(3, 0), Float64Array.of(0, 0.5)])).toBeCloseTo(Math.log(9) + Math.log(0.25), 8);
 });
+
+// A to B to C, the concentration of B read, rate constants 0.7 and 0.2: best read at 1.23 and 6.86
+// (G. E. P. Box, H. L. Lucas, Biometrika 46 (1959) 77-90; from memory, and within the grid the best of all pairs here).
+test("two rates in a row are told best from the two times of Box and Lucas", () => {
+  const time = Array.from({ length: 400 }, (_, i) => (i + 1) / 40);
+  const of = (a: number, b: number, t: number): number => (a / (a - b)) * (Math.exp(-b * t) - Math.exp(-a * t));
+  const step = 1e-5;
+  const columns = [
+    Float64Array.from(time, (t) => (of(0.7 + step, 0.2, t) - of(0.7 - step, 0.2, t)) / (2 * step)),
+    Float64Array.from(time, (t) => (of(0.7, 0.2 + step, t) - of(0.7, 0.2 - step, t)) / (2 * step)),
+  ];
+  const found = optimalSamples(columns, time.length, 2);
+  const [early, late] = (found?.chosen ?? []).map((i) => time[i]);
+  expect(Math.abs(early - 1.23)).toBeLessThan(0.03);
+  expect(Math.abs(late - 6.86)).toBeLessThan(0.03);
+  let best = Number.NEGATIVE_INFINITY;
+  for (let i = 0; i < time.length; i++)
+    for (let j = 0; j < i; j++)
+      best = Math.max(best, Math.log((columns[0][i] * columns[1][j] - columns[0][j] * columns[1][i]) ** 2));
+  expect(found?.information).toBeCloseTo(best, 6);
+});
