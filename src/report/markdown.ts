@@ -58,12 +58,16 @@ export function writeSummary(report: StudyReport): string {
 
 /** As many findings as leave room on the page; all of them, and what the data do not support, are in the report. */
 const mostFindings = 5;
+/** Figures that take more room are left to the report, characters. */
+const longestEvidence = 200;
 
 function firstFindings({ findings, answer }: StudyReport): string[] {
   const answered = answer.map((a) => a.says.toLowerCase()).join(" ");
   // What the answer says already is not said twice on one page.
   const others = findings.filter((f) => !answered.includes(f.message.toLowerCase()));
-  const told = others.slice(0, mostFindings).map((f) => `${f.message} (${f.evidence})`);
+  const told = others
+    .slice(0, mostFindings)
+    .map((f) => (f.evidence.length > longestEvidence ? f.message : `${f.message} (${f.evidence})`));
   const more = others.length - told.length;
   return more > 0 ? [...told, `${more} more in the report`] : told;
 }
