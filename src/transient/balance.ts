@@ -39,6 +39,14 @@ export function amountsOf(run: Run, plant: Plant): Amounts {
     if (!(flow > 0)) continue;
     add(left, passed(run.signal(node), node));
   }
+  // What leaves gives off what it warms feeds by.
+  for (const { from, feed, gain } of scene.warmings) {
+    const flow = gain * plant.feeds[feed].flow;
+    run.signal(from).integral(horizon, one);
+    left[width - 1] -= flow * one[width - 1];
+    feeds[feed].integral(horizon, one);
+    left[width - 1] += flow * one[width - 1];
+  }
   for (const { stage, run: of, first } of run.stages) {
     for (let i = 0; i < width; i++) made[i] += of.made[i];
     stage.held.forEach((_, body) => {
