@@ -264,7 +264,7 @@ function balanceOf(run: Run, plant: Plant, { species, scale, numbers }: Conditio
   const toSi = (x: Float64Array): Float64Array => Float64Array.from(species, (_, i) => scale[i] * x[i]);
   const closure = closureOf(amounts);
   const conserved = conservedClosure(conservedBy(numbers, n), amounts);
-  const worst = closure.reduce((most, c) => (Math.abs(c) <= most ? most : Math.abs(c)), conserved);
+  const worst = Math.max(conserved, ...Array.from(closure, Math.abs));
   return {
     fed: toSi(amounts.fed),
     left: toSi(amounts.left),
