@@ -2,6 +2,7 @@ import { requireCarried } from "../compile/carried.js";
 import type { Plant } from "../compile/plant.js";
 import type { Chemistry } from "../model/chemistry.js";
 import type { Duty } from "../model/duty.js";
+import { ascending } from "../numerics/ascending.js";
 import type { Halt } from "../numerics/odex.js";
 import { RefusedError } from "../problems/refused.js";
 import { problem } from "../problems/report.js";
@@ -128,7 +129,7 @@ export function transient(
   const flows = flowsOf(plant, duty, settings);
   const scene = sceneOf(plant, conditions, flows);
   const { species } = conditions;
-  const clock = Float64Array.from(times);
+  const clock = ascending(times);
   const start = startOf(plant, chemistry, duty, conditions, settings);
   const names = (options.at ?? plant.network.compartments.map((c) => c.name)).filter((name) => plant.exit.has(name));
   const nodeOf = (name: string): number => plant.exit.get(name) as number;
