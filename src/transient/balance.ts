@@ -119,7 +119,8 @@ function parcelsIn(run: Run, node: number): { before: Float64Array; now: Float64
 export function closureOf({ fed, left, made, before, held }: Amounts): Float64Array {
   return fed.map((f, i) => {
     const size = Math.max(f + before[i], left[i] + held[i], Math.abs(made[i]));
-    return size > 0 ? (f + before[i] + made[i] - left[i] - held[i]) / size : 0;
+    // What could not be counted stays unknown.
+    return size === 0 ? 0 : (f + before[i] + made[i] - left[i] - held[i]) / size;
   });
 }
 
