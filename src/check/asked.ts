@@ -3,7 +3,7 @@ import type { Network } from "../model/network.js";
 import type { Asked, InputRange, Study } from "../model/study.js";
 import type { Report } from "../problems/report.js";
 import { nearest } from "../text/nearest.js";
-import type { Dimension } from "../units/dimension.js";
+import { type Dimension, dimensions } from "../units/dimension.js";
 import { sameKind } from "./same-kind.js";
 
 /** What a duty in a network may be swept over, by name: its dimension, and whether it has bounds of its own. */
@@ -32,6 +32,7 @@ export function inputNames(
     add(`${place}.jacket`, temperature.dimension);
     add(`${place}.conductance`, conductance.dimension);
   }
+  for (const { feed, size } of duty.heat?.exchangers ?? []) add(`${feed}.${size.is}`, size.value.dimension);
   const capacity = duty.heat && duty.chemistry?.heatCapacity;
   if (capacity) add("heat-capacity", capacity.dimension);
   if (duty.temperature) add("temperature", duty.temperature.dimension);
@@ -41,13 +42,21 @@ export function inputNames(
   return names;
 }
 
+/** Bodies of several tanks in a row, how many of which a sweep may move in whole steps. */
+const countNames = ({
+  compartments,
+}: Network): [string, { readonly dimension: Dimension; readonly bounded: boolean }][] =>
+  compartments.flatMap(({ name, counts }) =>
+    counts.repeat === undefined ? [] : [[`${name}.repeat`, { dimension: dimensions.ratio, bounded: false }]],
+  );
+
 /**
  * Are the inputs that sweeps and aims of a study name in at least one rival, of the right kind, and between something? What is
  * asked of a changed vessel is left to the run: the change may bring the name.
  */
 export function checkAsked({ rivals, sweeps, aims }: Pick<Study, "rivals" | "sweeps" | "aims">, report: Report): void {
-  const look = ({ duty, change }: Asked, { name, at, between }: InputRange): void => {
-    const all = rivals.map((r) => inputNames(r.network, duty));
+  const look = ({ duty, change }: Asked, { name, at, between }: InputRange, steps: boolean): void => {
+    const all = rivals.map((r) => new Map([...inputNames(r.network, duty), ...(steps ? countNames(r.network) : [])]));
     const found = all.find((names) => names.has(name))?.get(name);
     if (all.length === 0 || (!found && change)) return;
     if (!found) {
@@ -58,6 +67,6 @@ export function checkAsked({ rivals, sweeps, aims }: Pick<Study, "rivals" | "swe
     for (const end of between ?? []) sameKind(found.dimension, end, report);
     if (!between && !all.some((names) => names.get(name)?.bounded)) report("range-missing", at, { name });
   };
-  for (const sweep of sweeps) for (const range of sweep.over) look(sweep, range);
-  for (const aim of aims) look(aim, aim.by);
+  for (const sweep of sweeps) for (const range of sweep.over) look(sweep, range, true);
+  for (const aim of aims) look(aim, aim.by, false);
 }

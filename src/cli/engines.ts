@@ -18,8 +18,13 @@ export function engineNamed(name: SimulateOptions["engine"], plant: Plant, until
   return named ?? engineFor(plant, until);
 }
 
-/** An independent engine to check another by: integration in time, or for large networks the other of their two ways. */
+/** Nodes up to which integration in time, whose implicit steps eliminate, checks also the ways for large networks. */
+const mostIntegrated = 2000;
+
+/** An independent engine to check another by: integration in time, or for the largest networks the other of their two ways. */
 export function engineBeside(engine: AnyEngine, plant: Plant): AnyEngine {
+  const large = engine === chebyshev || engine === krylov;
+  if (large && plant.columns.size <= mostIntegrated) return ode;
   if (engine === chebyshev) return krylov;
   if (engine === krylov) return chebyshev;
   if (engine !== ode) return ode;

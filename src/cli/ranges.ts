@@ -1,6 +1,7 @@
 import { collector } from "../problems/report.js";
 import type { ScalarNode } from "../read/tree.js";
 import { emptyScope, resolveValue } from "../resolve/value.js";
+import { isCount } from "../study/counts.js";
 import type { Input } from "../study/inputs.js";
 import { type Axis, spaced } from "../study/sweep.js";
 import { nearest } from "../text/nearest.js";
@@ -31,9 +32,14 @@ export function axisFrom(text: string, inputs: readonly Input[]): Axis {
   const equals = text.indexOf("=");
   if (equals < 0) throw new UsageError(`${option}: write it like --over "name=500 L..2000 L:16"`);
   const input = inputNamed(text.slice(0, equals).trim(), inputs, "--over");
-  const { from, to, count = usualCount, log } = rangeFrom(text.slice(equals + 1).trim(), input, option);
+  const { from, to, count: asked, log } = rangeFrom(text.slice(equals + 1).trim(), input, option);
+  const whole = isCount(input);
+  if (whole && !(Number.isInteger(from) && Number.isInteger(to)))
+    throw new UsageError(`${option}: '${input.name}' moves in whole steps`);
+  const count = asked ?? (whole ? Math.min(to - from + 1, usualCount) : usualCount);
   if (count < 2 || count > mostPoints) throw new UsageError(`${option}: 2 to ${mostPoints} points make a sweep`);
-  return { input, values: spaced(from, to, count, log), log };
+  const values = spaced(from, to, count, log);
+  return { input, values: whole ? [...new Set(values.map(Math.round))] : values, log };
 }
 
 /** @throws UsageError where there is no such input */

@@ -78,7 +78,9 @@ export async function simulateUnit(network: Network, options: SimulateOptions, {
   if (options.ages !== undefined) io.write(options.ages, agesCsv(plant, clock.unit));
   const notes = [
     ...(result.stopped ? [`not converged: ${result.stopped}; what was found before is printed`] : []),
-    ...(result.truncated ? ["tracer passes through tubes were cut off where they add nothing that counts"] : []),
+    ...(result.truncated && !result.stopped
+      ? ["tracer passes through tubes were cut off where they add nothing that counts"]
+      : []),
   ];
   const last = clock.shown[clock.shown.length - 1];
   return {

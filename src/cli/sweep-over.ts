@@ -1,5 +1,6 @@
 import { dutyCautions } from "../report/duty-cautions.js";
 import { plotSweep } from "../report/study/sweep-figure.js";
+import { countsOf } from "../study/counts.js";
 import { inputsOf } from "../study/inputs.js";
 import { type Sweep, sweep } from "../study/sweep.js";
 import { inUnit } from "../units/unit.js";
@@ -24,7 +25,7 @@ export async function overOutcome(asked: Asked, options: SweepOptions, { io }: C
   if (operation.duty.report.length === 0) {
     throw new UsageError(`the duty '${operation.duty.title}' reports nothing: list figures under \`report:\``);
   }
-  const inputs = inputsOf(operation);
+  const inputs = [...inputsOf(operation), ...countsOf(operation)];
   const axes = (options.over ?? []).map((text) => axisFrom(text, inputs));
   if (axes.length === 2 && axes[0].input === axes[1].input) throw new UsageError("--over: two different inputs");
   const progress = progressOn(io);

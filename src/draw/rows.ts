@@ -11,6 +11,7 @@ const length = { most: 860, wanted: 800 };
 const lead = 26; // px at a cut for the letters of its streams
 const rowGap = 22; // px
 const rim = 6; // px around a drawing for what is drawn a little beyond its box: outlines, letters
+const ends = 24; // px beyond both ends of a drawing, where a reader's type is wider than what was measured
 
 /** A layout as it stands on the page: as it is, or, where it is long, cut into rows, with a line that says so. */
 export function inRows(layout: Layout): {
@@ -23,9 +24,9 @@ export function inRows(layout: Layout): {
   if (rows.length < 2) return { parts: drawPieces(layout), bounds, says: "" };
   const height = bounds.height + rowGap;
   const parts = rows.map(({ from, to, enter, leave }, k) => {
-    const [before, behind] = [k === 0 ? rim : 0, k === rows.length - 1 ? rim : 0];
+    const [before, behind] = [k === 0 ? ends : 0, k === rows.length - 1 ? ends : 0];
     const window = { ...grown(bounds, rim), x: from - before, width: to - from + before + behind };
-    const left = k === 0 ? bounds.x - rim : bounds.x + lead;
+    const left = k === 0 ? bounds.x - ends : bounds.x + lead;
     const top = bounds.y - rim + k * height;
     const at = { x: left, y: top, width: window.width, height: window.height };
     const view = [window.x, window.y, window.width, window.height].map(px).join(" ");

@@ -28,7 +28,7 @@ export interface IntegrateOptions {
   readonly relative?: number;
   /** Absolute tolerance, in the unit of the state, one for all or one per component; default 1e-12. */
   readonly absolute?: number | ArrayLike<number>;
-  /** Times at which the state is wanted, from `from` towards `to`, ends included; those outside are left out. Default: `to`. */
+  /** Times at which the state is wanted, in any order, ends included; those outside `from` to `to` are left out. Default: `to`. */
   readonly outputs?: ArrayLike<number>;
   /** Accepted steps after which the run is given up, default 1e7. */
   readonly maxSteps?: number;
@@ -39,7 +39,7 @@ export interface IntegrateOptions {
 export type IntegrateEnd = "reached" | { readonly stopped: number; readonly why: Halt };
 
 export interface Integration {
-  /** The output times that were reached. */
+  /** The output times that were reached, in the order in which they were asked for. */
   readonly times: Float64Array;
   /** One state per output time. */
   readonly states: Float64Array[];
@@ -67,21 +67,32 @@ export interface Integration {
  *
  * A right-hand side that gives a non-finite number inside a trial step makes the step smaller; where no step is small enough
  * the end says "not-finite". Failure is a value: the outputs reached so far are kept.
+ * @throws RangeError where a time, a tolerance or the method is none
  */
 export function integrate(o: IntegrateOptions): Integration {
   const direction = o.to < o.from ? -1 : 1;
   const y = Float64Array.from(o.start);
-  const wanted = Array.from(o.outputs ?? [o.to]).filter(
+  requireSound(o);
+  const asked = Array.from(o.outputs ?? [o.to]).filter(
     (t) => (t - o.from) * direction >= 0 && (o.to - t) * direction >= 0,
   );
+  const order = [...asked.keys()].sort((a, b) => (asked[a] - asked[b]) * direction);
+  const wanted = order.map((k) => asked[k]);
   const states: Float64Array[] = [];
   const keep = (state: Float64Array): void => {
     states.push(state.slice());
   };
   const stats = { steps: 0, rejected: 0, rhs: 0, jacobians: 0, factorizations: 0 };
   const finish = (end: IntegrateEnd): Integration => {
-    const times = Float64Array.from(wanted.slice(0, states.length));
-    return { times, states, end, last: y, stats: { ...stats, method: method.used() } };
+    // As they were asked for.
+    const reached = [...states.keys()].sort((a, b) => order[a] - order[b]);
+    return {
+      times: Float64Array.from(reached, (k) => wanted[k]),
+      states: reached.map((k) => states[k]),
+      end,
+      last: y,
+      stats: { ...stats, method: method.used() },
+    };
   };
   const relative = Math.max(o.relative ?? 1e-9, 1e-14);
   const method = methodOf(o, y.length, relative);
@@ -111,6 +122,19 @@ export function integrate(o: IntegrateOptions): Integration {
   }
   while (states.length < wanted.length) keep(y);
   return finish("reached");
+}
+
+const methods = ["auto", "nonstiff", "stiff"];
+
+function requireSound({ from, to, outputs, stops, method, relative, absolute, maxSteps }: IntegrateOptions): void {
+  const finite = (...numbers: number[]): boolean => numbers.every(Number.isFinite);
+  if (!finite(from, to)) throw new RangeError("`from` and `to` must be finite");
+  if (!finite(...Array.from(outputs ?? []), ...Array.from(stops ?? [])))
+    throw new RangeError("`outputs` and `stops` must be finite");
+  const tolerances = [relative ?? 0, ...(typeof absolute === "object" ? Array.from(absolute) : [absolute ?? 0])];
+  if (!tolerances.every((x) => x >= 0)) throw new RangeError("tolerances must be numbers, not below zero");
+  if (method !== undefined && !methods.includes(method)) throw new RangeError(`no method '${method}'`);
+  if (Number.isNaN(maxSteps)) throw new RangeError("`maxSteps` must be a number");
 }
 
 interface Method {

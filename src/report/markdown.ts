@@ -42,10 +42,9 @@ export function writeSummary(report: StudyReport): string {
       ["network", "weight", "why"],
       report.rivals.map((r) => [r.network, chance(r.weight), r.verdict]),
     ),
-    bullets(
-      "Tests",
-      report.data.map((d) => `${d.trial}, at ${d.at}: grade ${d.grade}`),
-    ),
+    report.data.length === 0
+      ? ""
+      : `Grades of the tests: ${report.data.map((d) => `${inline(d.trial)}, at ${inline(d.at)}: ${inline(d.grade)}`).join("; ")}.`,
     bullets("Findings", firstFindings(report)),
     bullets(
       "Cautions",

@@ -162,6 +162,10 @@ function resolveLog(node: MapNode, { what, wanted }: Changed, files: Files, repo
 
 function loggedFlow(feed: string, node: MapNode, files: Files, report: Report): Changing | undefined {
   const table = resolveFlowLog(feed, node, files, report);
+  if (table && !(table.series.value[0] > 0)) {
+    report("flow-log-still", table.series.at, { feed, file: table.series.file });
+    return undefined;
+  }
   return table && logged(table);
 }
 

@@ -25,6 +25,8 @@ export interface Arrivals {
   readonly jumps: ReadonlyMap<number, number[]>;
   /** Amounts that were given up because there were too many spikes. */
   readonly leftOut: number;
+  /** s; what arrives later was given up because there was too much of it. Infinity where all was followed. */
+  readonly complete: number;
 }
 
 /** Derivatives up to this order may jump at a break; the integrator's own error control sees to higher ones. */
@@ -33,7 +35,7 @@ const highestOrder = 5;
 const smallest = 1e-12;
 /** Times closer than this, relative, are one. */
 const apart = 1e-12;
-const mostEvents = 40_000;
+const mostEvents = 200_000;
 
 interface Event {
   readonly time: number;
@@ -126,6 +128,7 @@ class Finder {
       this.depart(time);
     }
     let leftOut = 0;
+    const complete = events > mostEvents ? this.queue.next : Number.POSITIVE_INFINITY;
     while (events > mostEvents && this.queue.size > 0)
       leftOut += this.queue.pop(0).reduce((sum, e) => sum + e.amount, 0);
     return {
@@ -135,6 +138,7 @@ class Finder {
       breaks: this.breaks.map((list) => distinct(list)),
       jumps: this.jumps,
       leftOut,
+      complete,
     };
   }
 

@@ -10,3 +10,9 @@ const inWords: Readonly<Record<Halt, string>> = {
 /** When, where and why an integration ended early. */
 export const haltSaid = (t: number, why: Halt, node: string): string =>
   `the integrator stopped ${formatNumber(t)} s after the start${node === "" ? "" : `, in ${node}`}: ${inWords[why]}`;
+
+/** What is missing of a curve whose passes through tubes were too many to be followed one by one. */
+export const cut = (complete: number, last: number): string | undefined =>
+  last < complete
+    ? undefined
+    : `tracer passes tubes in circles too often to be followed one by one: all is there up to ${formatNumber(complete)} s, later some is missing`;

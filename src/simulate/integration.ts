@@ -103,6 +103,11 @@ export class Integration implements Surroundings {
     return this.arrivals.spikes.get(node) ?? [];
   }
 
+  /** s; what arrives later was given up because there was too much of it. */
+  get complete(): number {
+    return this.arrivals.complete;
+  }
+
   get leftOut(): number {
     return this.arrivals.leftOut;
   }

@@ -37,6 +37,8 @@ export interface Passes {
   readonly slots: number;
   /** True where passes were given up because there were too many. */
   readonly truncated: boolean;
+  /** s; what passes later is missing where they were too many. */
+  readonly complete: number;
 }
 
 const smallest = 1e-12;
@@ -69,7 +71,7 @@ export function passes(
   const spread = spreading(plant, passing, into, height);
   const waiting: { delay: number; seeds: Seed[] }[] = [{ delay: 0, seeds: [] }];
   while (waiting.length > 0) {
-    if (copies.length >= mostCopies) return { copies, rest, slots, truncated: true };
+    if (copies.length >= mostCopies) return { copies, rest, slots, truncated: true, complete: waiting[0].delay };
     const { delay, seeds: all } = waiting.shift() as (typeof waiting)[number];
     const seeds: Seed[] = [];
     for (const seed of all) {
@@ -117,7 +119,7 @@ export function passes(
     }
     copies.push({ delay, seeds, exits, direct, enteringDirect, smooth });
   }
-  return { copies, rest, slots, truncated: false };
+  return { copies, rest, slots, truncated: false, complete: Number.POSITIVE_INFINITY };
 }
 
 /** What the dispersed part of every slot is at one s, found along with the copies. */

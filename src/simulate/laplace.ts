@@ -4,6 +4,7 @@ import type { PlantSlope } from "../compile/plant-slopes.js";
 import { isClosed } from "../model/network.js";
 import { SteadyEquations } from "../transfer/steady-equations.js";
 import type { Entry } from "./entry.js";
+import { cut } from "./halts.js";
 import { type Along, addParts, type Curve } from "./laplace-curves.js";
 import { type Passing, passings } from "./laplace-gain.js";
 import { type Passes, passes } from "./laplace-passes.js";
@@ -134,7 +135,8 @@ class LaplaceTracing implements Tracing {
       }
       const { settled, difference } = addParts(parts, seen, drive, curves, false, known);
       const slopes = along.map(({ gone, sums }) => (gone ? undefined : sums));
-      if (settled) return { seen, slopes, stopped: undefined };
+      const last = curves.reduce((t, { times }) => Math.max(t, times[times.length - 1] ?? 0), 0);
+      if (settled) return { seen, slopes, stopped: cut(sorted.complete, last) };
       const off = difference.toExponential(1);
       return { seen, slopes, stopped: `the inversion did not settle: two node counts differ by ${off} of the peak` };
     }

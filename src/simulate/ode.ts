@@ -7,7 +7,7 @@ import { arrivals } from "./arrivals.js";
 import { partsOf } from "./entry.js";
 import { extrapolation } from "./extrapolation.js";
 import { type FlowCourse, steadyCourse } from "./flow-course.js";
-import { haltSaid } from "./halts.js";
+import { cut, haltSaid } from "./halts.js";
 import { type Integrable, integrable } from "./integrable.js";
 import { Integration, type Put } from "./integration.js";
 import { type Drive, instant } from "./linear-system.js";
@@ -81,10 +81,11 @@ export function integrate(plant: Plant, course: FlowCourse, horizon: number, put
               : by * (run.integral(node, t) + spikesUntil(run, node, t, course)) - lag * value[i];
         return { value, integral: integral && course.constant ? times.map(sum) : new Float64Array(times.length) };
       });
-      const { stopped } = run;
+      const { stopped, complete } = run;
+      const asked = looks.reduce((t, { times }) => Math.max(t, times[times.length - 1] ?? 0), 0);
       return {
         seen,
-        stopped: stopped && haltSaid(stopped.t, stopped.why, stopped.node),
+        stopped: stopped ? haltSaid(stopped.t, stopped.why, stopped.node) : cut(complete, asked),
       };
     },
     balance(drive, until) {

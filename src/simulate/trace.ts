@@ -29,13 +29,14 @@ const manyTurns = 30_000;
 
 /**
  * The exact engine for cells, tubes and junctions alone, one for large networks where there are many; laplace for plants with other bodies, and where tracer goes round
- * and round a closed vessel.
+ * and round a closed vessel; integration where it comes back by tubes very often.
  * @param horizon s; nothing later is asked
  */
 export function engineFor(plant: Plant, horizon = 0): AnyEngine {
   const { part } = plant.columns;
   if (part.includes(Part.Block)) return manyWaysRound(plant) ? ode : laplace;
   if (isClosed(plant) && passesIn(plant, horizon) > fewPasses) return laplace;
+  if (!isClosed(plant) && manyCopies(plant, horizon)) return ode;
   return isLarge(plant) ? largeEngine(plant, horizon) : exact;
 }
 
@@ -64,6 +65,28 @@ function largeEngine({ columns, feeds, volume }: Plant, horizon: number): AnyEng
   const fed = feeds.reduce((sum, f) => sum + f.flow, 0);
   const span = horizon > 0 ? horizon : fed > 0 ? (3 * volume.active) / fed : 0;
   return fastest * volume.active > farApart * through && fastest * span > manyTurns ? krylov : chebyshev;
+}
+
+/** Passes through tubes beyond which cells behind them are too many copies for the exact engine. */
+const mostFollowed = 400;
+/** Mean passes through a tube to what is followed of it: until a pass carries 1e-12. */
+const untilNothing = 28;
+
+/**
+ * Does tracer come back to cells by tubes so often that the exact engine would go on for minutes? Told from how often the mean of
+ * what is fed passes a tube.
+ */
+function manyCopies(plant: Plant, horizon: number): boolean {
+  const { size, part, volume, inflow } = plant.columns;
+  if (!plant.structure.tubeInLoop || !part.includes(Part.Cell)) return false;
+  const fed = plant.feeds.reduce((sum, f) => sum + f.flow, 0);
+  for (let i = 0; i < size; i++) {
+    if (part[i] !== Part.Delay || !(volume[i] > 0)) continue;
+    const passes = untilNothing * (inflow[i] / fed);
+    if (Math.min(horizon > 0 ? (horizon * inflow[i]) / volume[i] : Number.POSITIVE_INFINITY, passes) > mostFollowed)
+      return true;
+  }
+  return false;
 }
 
 /** How often tracer may pass the shortest tube. */

@@ -27,12 +27,15 @@ export interface Unrolled {
   readonly input: readonly number[];
   /** How all of it moves with the plant; undefined where that has no derivative. */
   slope(plant: PlantSlope): UnrolledSlope | undefined;
-  /** True where passes were given up because there were too many. */
-  readonly truncated: boolean;
+  /** s; passes later than this were given up because there were too many. Infinity where all were followed. */
+  readonly complete: number;
 }
 
 const nothing: Draft = { weights: new Map(), direct: 0 };
 const mostStates = 50_000;
+/** Copies in all where they hold cells, and where they hold none: those cost little. */
+const mostCopies = 10_000;
+const mostBare = 100_000;
 const smallestPass = 1e-12;
 
 /**
@@ -43,9 +46,9 @@ const smallestPass = 1e-12;
 export function unroll(plant: Plant, entry: Entry, horizon: number): Unrolled {
   requireCarried(plant);
   const builder = new Unroller(plant, entry);
-  const truncated = builder.build(horizon);
+  const complete = builder.build(horizon);
   return {
-    truncated,
+    complete,
     outflow: (i) => builder.copies.flatMap((c) => passage(c.delay, c.outflow.get(i) ?? c.seeds.get(i))),
     inlet: (i) => builder.copies.flatMap((c) => passage(c.delay, c.inlets.get(i))),
     rows: builder.rows,
@@ -91,7 +94,8 @@ class Unroller {
     return { plant, put, blends, copies };
   }
 
-  build(horizon: number): boolean {
+  /** Returns the time up to which all passes are there, s. */
+  build(horizon: number): number {
     const waiting: { delay: number; seeds: Map<number, Draft> }[] = [{ delay: 0, seeds: new Map() }];
     while (waiting.length > 0) {
       const next = waiting.shift() as (typeof waiting)[number];
@@ -113,9 +117,10 @@ class Unroller {
           copy.goes.set(tube, seeds);
         }
       }
-      if (this.rows.length > mostStates || this.copies.length > 10_000) return waiting.length > 0;
+      const most = this.rows.length > 0 ? mostCopies : mostBare;
+      if (waiting.length > 0 && (this.rows.length > mostStates || this.copies.length > most)) return waiting[0].delay;
     }
-    return false;
+    return Number.POSITIVE_INFINITY;
   }
 
   private copy(delay: number, seeds: Map<number, Draft>, first: boolean): Copy {

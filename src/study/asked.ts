@@ -3,6 +3,7 @@ import type { AimAsked, Asked, InputRange, Study, SweepAsked } from "../model/st
 import { changes } from "../transient/course-line.js";
 import { type AimResult, solveAim } from "./aim.js";
 import { changedVessel } from "./changed.js";
+import { countsOf, isCount } from "./counts.js";
 import type { RivalDraws } from "./draws-of.js";
 import { type Input, inputsOf } from "./inputs.js";
 import type { Operation, Row } from "./operate.js";
@@ -30,10 +31,11 @@ export function sweepAsked(
   if ("skipped" in made) return { ...head, skipped: made.skipped };
   const axes = [];
   for (const range of asked.over) {
-    const between = rangeIn(made.inputs, range);
+    const between = rangeIn([...made.inputs, ...countsOf(made.operation)], range);
     if ("skipped" in between) return { ...head, skipped: between.skipped };
     const { input, from, to, log } = between;
-    axes.push({ input, log, values: spaced(from, to, range.points, log) });
+    const values = spaced(from, to, range.points, log);
+    axes.push({ input, log, values: isCount(input) ? [...new Set(values.map(Math.round))] : values });
   }
   return { ...head, found: sweep(made.operation, axes, made.rows, watch) };
 }

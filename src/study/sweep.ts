@@ -1,4 +1,5 @@
 import type { Figure } from "../reaction/figures.js";
+import { isCount, withCounts } from "./counts.js";
 import { type Input, rowWith } from "./inputs.js";
 import { type JumpFound, jumpsAlong } from "./jumps.js";
 import { noRow, type Operation, operate, type Row, valuesAt } from "./operate.js";
@@ -61,8 +62,14 @@ export function sweep(operation: Operation, axes: readonly Axis[], rows: readonl
   for (const [k, at] of places.entries()) {
     if (watch.cancelled?.()) break;
     watch.progress?.(k / places.length);
-    const here = operate(operation, rowWith(noRow, inputs, at));
-    const drawn = here.figures ? rows.map((row) => valuesAt(operation, rowWith(row, inputs, at))) : [];
+    const there = withCounts(operation, inputs, at);
+    if (typeof there === "string") {
+      points.push({ at, figures: undefined, cannot: there, intervals: [] });
+      continue;
+    }
+    const put = (row: Row): Row => withMoved(row, inputs, at);
+    const here = operate(there, put(noRow));
+    const drawn = here.figures ? rows.map((row) => valuesAt(there, put(row))) : [];
     points.push({
       at,
       figures: here.figures,
@@ -72,11 +79,22 @@ export function sweep(operation: Operation, axes: readonly Axis[], rows: readonl
   }
   const others = someOf(points, mostSearched).flatMap(({ at, figures }) => {
     if (!figures || watch.cancelled?.()) return [];
-    return otherStates(operation, rowWith(noRow, inputs, at), at) ?? [];
+    const there = withCounts(operation, inputs, at);
+    return typeof there === "string" ? [] : (otherStates(there, withMoved(noRow, inputs, at), at) ?? []);
   });
   const stopped = points.length < places.length;
   const jumps = stopped ? [] : jumpsOf(operation, axes, points, watch);
   return { operation, axes, points, others, jumps, draws: rows.length, stopped };
+}
+
+/** A row with those inputs at values that do not make another network. */
+function withMoved(row: Row, inputs: readonly Input[], at: readonly number[]): Row {
+  const moved = inputs.flatMap((input, k) => (isCount(input) ? [] : [{ input, at: at[k] }]));
+  return rowWith(
+    row,
+    moved.map((m) => m.input),
+    moved.map((m) => m.at),
+  );
 }
 
 function jumpsOf(
@@ -85,12 +103,16 @@ function jumpsOf(
   points: readonly SweepPoint[],
   { cancelled }: Watch,
 ): SweepJump[] {
+  // Whole steps are nothing but jumps.
+  if (isCount(first.input)) return [];
   return (second?.values ?? [undefined]).flatMap((beside) => {
+    const own = beside === undefined ? operation : withCounts(operation, [second.input], [beside]);
+    if (typeof own === "string") return [];
     const along = points.flatMap(({ at, figures }) =>
       at[1] === beside && figures ? [{ x: at[0], values: figures.map((f) => f.value) }] : [],
     );
-    const row = beside === undefined ? noRow : rowWith(noRow, [second.input], [beside]);
-    return jumpsAlong(operation, first.input, along, row, cancelled).map((jump) => ({ ...jump, beside }));
+    const row = beside === undefined ? noRow : withMoved(noRow, [second.input], [beside]);
+    return jumpsAlong(own, first.input, along, row, cancelled).map((jump) => ({ ...jump, beside }));
   });
 }
 

@@ -39,6 +39,14 @@ export function amountsOf(run: Run, plant: Plant): Amounts {
     if (!(flow > 0)) continue;
     add(left, passed(run.signal(node), node));
   }
+  // What leaves gives off what it warms feeds by.
+  for (const { from, feed, gain } of scene.warmings) {
+    const flow = gain * plant.feeds[feed].flow;
+    run.signal(from).integral(horizon, one);
+    left[width - 1] -= flow * one[width - 1];
+    feeds[feed].integral(horizon, one);
+    left[width - 1] += flow * one[width - 1];
+  }
   for (const { stage, run: of, first } of run.stages) {
     for (let i = 0; i < width; i++) made[i] += of.made[i];
     stage.held.forEach((_, body) => {
@@ -111,7 +119,8 @@ function parcelsIn(run: Run, node: number): { before: Float64Array; now: Float64
 export function closureOf({ fed, left, made, before, held }: Amounts): Float64Array {
   return fed.map((f, i) => {
     const size = Math.max(f + before[i], left[i] + held[i], Math.abs(made[i]));
-    return size > 0 ? (f + before[i] + made[i] - left[i] - held[i]) / size : 0;
+    // What could not be counted stays unknown.
+    return size === 0 ? 0 : (f + before[i] + made[i] - left[i] - held[i]) / size;
   });
 }
 

@@ -3,6 +3,11 @@ import { stronglyConnected } from "../numerics/graph.js";
 import { factor, solve } from "../numerics/lu.js";
 import type { FlowCourse, FlowsNow } from "../simulate/flow-course.js";
 import type { Sort } from "../simulate/integrable.js";
+import type { Warming } from "./warming.js";
+
+/** What is carried: the liquid, or the temperature where exchangers bring some of it alone. */
+export const Carried = { liquid: 0, warmth: 1 } as const;
+export type Carried = (typeof Carried)[keyof typeof Carried];
 
 /** One way into a node: a link, or a feed, from a source itself or, part by part, from a junction. */
 interface Way {
@@ -26,15 +31,21 @@ export class Blends {
   private readonly begin: Int32Array;
   /** Nodes in the order in which their parts are found; junctions that feed one another together. */
   private readonly order: readonly Int32Array[];
-  private readonly known = new Map<number, Float64Array>();
-  private readonly changing: Float64Array;
-  private last = -1;
+  private readonly known: readonly Map<number, Float64Array>[] = [new Map(), new Map()];
+  private readonly changing: readonly Float64Array[];
+  private readonly last = [-1, -1];
+  /** By link that an exchanger is: its gain. By feed, what is left of its own temperature. */
+  private readonly gains: ReadonlyMap<number, number>;
+  private readonly kept: ReadonlyMap<number, number>;
 
   constructor(
     plant: Plant,
     sort: readonly Sort[],
     readonly course: FlowCourse,
+    private readonly warmings: readonly Warming[] = [],
   ) {
+    this.gains = new Map(warmings.map(({ link, gain }) => [link, gain]));
+    this.kept = new Map(warmings.map(({ feed, gain }) => [plant.columns.size + feed, 1 - gain]));
     const { size } = plant.columns;
     const into: { from: number; link: number; feed: number }[][] = Array.from({ length: size }, () => []);
     plant.to.forEach((to, k) => {
@@ -60,7 +71,7 @@ export class Blends {
     }
     this.begin = new Int32Array(size + 1);
     for (let i = 0; i < size; i++) this.begin[i + 1] = this.begin[i] + this.own[i].length;
-    this.changing = new Float64Array(this.begin[size]);
+    this.changing = [0, 1].map(() => new Float64Array(this.begin[size]));
     this.ways = into.map((all, node) => {
       const place = new Map(Array.from(this.own[node], (source, j) => [source, j]));
       return all.map(({ from, link, feed }): Way => {
@@ -85,28 +96,41 @@ export class Blends {
     return this.begin[node];
   }
 
+  /** Do temperatures go other ways than the liquid? */
+  get apart(): boolean {
+    return this.warmings.length > 0;
+  }
+
   /** The parts of all nodes at a time; good until the next call. */
-  at(t: number, side: number): Float64Array {
-    return this.by(this.course.at(t, side));
+  at(t: number, side: number, of: Carried = Carried.liquid): Float64Array {
+    return this.by(this.course.at(t, side), of);
   }
 
   /** The parts at some flows. */
-  by(flows: FlowsNow): Float64Array {
+  by(flows: FlowsNow, of: Carried = Carried.liquid): Float64Array {
+    const changing = this.changing[of];
     if (flows.stamp < 0) {
-      if (flows.stamp !== this.last) this.find(flows, this.changing);
-      this.last = flows.stamp;
-      return this.changing;
+      if (flows.stamp !== this.last[of]) this.find(flows, of, changing);
+      this.last[of] = flows.stamp;
+      return changing;
     }
-    let parts = this.known.get(flows.stamp);
+    let parts = this.known[of].get(flows.stamp);
     if (!parts) {
-      parts = new Float64Array(this.changing.length);
-      this.find(flows, parts);
-      this.known.set(flows.stamp, parts);
+      parts = new Float64Array(changing.length);
+      this.find(flows, of, parts);
+      this.known[of].set(flows.stamp, parts);
     }
     return parts;
   }
 
-  private find({ link, node: through }: FlowsNow, parts: Float64Array): void {
+  private share({ link, feed }: Way, node: number, { link: links, node: through }: FlowsNow, of: Carried): number {
+    if (link < 0) return (through[feed] / through[node]) * (of === Carried.warmth ? (this.kept.get(feed) ?? 1) : 1);
+    const gain = this.gains.get(link);
+    if (gain === undefined) return links[link] / through[node];
+    return of === Carried.warmth ? gain : 0;
+  }
+
+  private find(flows: FlowsNow, of: Carried, parts: Float64Array): void {
     parts.fill(0);
     for (const group of this.order) {
       const round = group.length > 1 || this.ways[group[0]].some((way) => way.junction === group[0]);
@@ -115,24 +139,24 @@ export class Blends {
         const to = this.begin[node];
         for (const way of this.ways[node]) {
           if (inside?.includes(way.junction)) continue;
-          const share = (way.link >= 0 ? link[way.link] : through[way.feed]) / through[node];
+          const share = this.share(way, node, flows, of);
           const from = way.junction < 0 ? -1 : this.begin[way.junction];
           for (let j = 0; j < way.to.length; j++) parts[to + way.to[j]] += from < 0 ? share : share * parts[from + j];
         }
       }
-      if (inside) this.round(inside, link, through, parts);
+      if (inside) this.round(inside, flows, of, parts);
     }
   }
 
   /** Junctions that feed one another: (1 - shares) blend = what comes from elsewhere. */
-  private round(group: Int32Array, link: Float64Array, through: Float64Array, parts: Float64Array): void {
+  private round(group: Int32Array, flows: FlowsNow, of: Carried, parts: Float64Array): void {
     const n = group.length;
     const matrix = new Float64Array(n * n);
     group.forEach((node, i) => {
       matrix[i * n + i] += 1;
       for (const way of this.ways[node]) {
         const j = group.indexOf(way.junction);
-        if (j >= 0) matrix[i * n + j] -= link[way.link] / through[node];
+        if (j >= 0) matrix[i * n + j] -= this.share(way, node, flows, of);
       }
     });
     const lu = factor(matrix, n);

@@ -1,6 +1,7 @@
 import type { Halt } from "../numerics/odex.js";
 import { arrivals } from "../simulate/arrivals.js";
 import type { Drive } from "../simulate/linear-system.js";
+import { Carried } from "./blends.js";
 import type { FeedSignal } from "./feed-signal.js";
 import { type ParcelSignal, parcelSignal } from "./parcel-signal.js";
 import { Path } from "./path.js";
@@ -120,7 +121,7 @@ export class Run {
   entering(node: number): Signal {
     const { blends, width } = this.ask.scene;
     const sources = Array.from(blends.sources(node), (source) => this.signal(source));
-    return sources.length === 1 ? sources[0] : new MixedSignal(sources, blends, node, width);
+    return sources.length === 1 && !blends.apart ? sources[0] : new MixedSignal(sources, blends, node, width);
   }
 
   /** The way through a body of parcels. */
@@ -213,12 +214,15 @@ export class Run {
     if (start.is !== "steady") return mixture;
     const { blends, course } = scene;
     const parts = blends.by(course.at(0, -1));
+    const warm = blends.apart ? blends.by(course.at(0, -1), Carried.warmth) : parts;
     blends.sources(node).forEach((source, j) => {
       const part = parts[blends.first(node) + j];
       const leaving = new Float64Array(scene.width);
       if (source < scene.sort.length) leaving.set(start.leaving(source));
       else feeds[source - scene.sort.length].read(-1, -1, leaving, 0);
-      for (let i = 0; i < scene.width; i++) mixture[i] += part * leaving[i];
+      const last = scene.width - 1;
+      for (let i = 0; i < last; i++) mixture[i] += part * leaving[i];
+      mixture[last] += warm[blends.first(node) + j] * leaving[last];
     });
     return mixture;
   }

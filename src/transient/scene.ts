@@ -4,10 +4,11 @@ import { bodyAt } from "../reaction/bodies.js";
 import type { Conditions } from "../reaction/conditions.js";
 import type { Pass } from "../reaction/dispersion.js";
 import type { Reactions } from "../reaction/kinetics.js";
-import type { FlowCourse } from "../simulate/flow-course.js";
+import { type FlowCourse, steadyCourse } from "../simulate/flow-course.js";
 import { integrable, type Sort } from "../simulate/integrable.js";
 import { Blends } from "./blends.js";
 import { type Follow, followOf } from "./follow.js";
+import { type Warming, warmedPlant } from "./warming.js";
 
 /** A plant with what happens in it, cut into stages: cells and dispersed bodies between tubes are integrated together. */
 export interface Scene {
@@ -25,6 +26,7 @@ export interface Scene {
   readonly net: ReturnType<typeof integrable>;
   readonly blends: Blends;
   readonly course: FlowCourse;
+  readonly warmings: readonly Warming[];
   /** What happens at a node. */
   at(node: number): Reactions;
   /** What a node makes of a mixture that goes through it. */
@@ -32,7 +34,9 @@ export interface Scene {
 }
 
 /** @throws RefusedError where a body cannot be followed in time */
-export function sceneOf(plant: Plant, { size: width, reactionsAt }: Conditions, course: FlowCourse): Scene {
+export function sceneOf(bare: Plant, { size: width, reactionsAt, heat }: Conditions, flows: FlowCourse): Scene {
+  const { plant, warmings } = warmedPlant(bare, heat?.exchangers ?? []);
+  const course = warmings.length > 0 ? steadyCourse(plant) : flows;
   const { size, inflow, part } = plant.columns;
   const follow = Array.from({ length: size }, (_, i) =>
     inflow[i] > 0 || part[i] === 0 ? followOf(plant, i) : undefined,
@@ -49,7 +53,8 @@ export function sceneOf(plant: Plant, { size: width, reactionsAt }: Conditions, 
     stages,
     looped: net.looped,
     net: { ...net, stage, stages },
-    blends: new Blends(plant, net.sort, course),
+    blends: new Blends(plant, net.sort, course, warmings),
+    warmings,
     course,
     at: reactionsAt,
     pass: (node) => bodyAt(plant, node, reactionsAt(node)),

@@ -1,4 +1,4 @@
-import type { Blends } from "./blends.js";
+import { type Blends, Carried } from "./blends.js";
 
 /** What an integral over time is weighed with: a flow, m3/s. */
 export type Weight = (t: number, side: number) => number;
@@ -39,6 +39,9 @@ export class MixedSignal implements Signal {
       sources[k].read(t, side, one, 0);
       const part = this.blends.at(t, side)[first + k];
       for (let i = 0; i < width; i++) out[to + i] += part * one[i];
+      if (this.blends.apart) {
+        out[to + width - 1] += (this.blends.at(t, side, Carried.warmth)[first + k] - part) * one[width - 1];
+      }
     }
   }
 
@@ -51,6 +54,8 @@ export class MixedSignal implements Signal {
       else sources[k].integral(t, one, (u, side) => (weight?.(u, side) ?? 1) * blends.at(u, side)[first + k]);
       const part = constant ? constant[first + k] : 1;
       for (let i = 0; i < width; i++) out[i] += part * one[i];
+      // Exchangers are there only while flows are constant.
+      if (blends.apart) out[width - 1] += (blends.at(0, 1, Carried.warmth)[first + k] - part) * one[width - 1];
     }
   }
 

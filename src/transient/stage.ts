@@ -1,5 +1,6 @@
 import type { Realization } from "../compartments/realization.js";
 import type { Kinetics } from "../reaction/kinetics.js";
+import { Carried } from "./blends.js";
 import type { Scene } from "./scene.js";
 import type { Signal } from "./signal.js";
 
@@ -96,7 +97,7 @@ export class Stage {
     this.flowing = new Float64Array(this.size);
     this.slope = new Float64Array(width * width);
     const rows = this.flowRows(0);
-    this.pattern = this.patternOf(rows);
+    this.pattern = this.patternOf(scene.blends.apart ? together(rows, this.flowRows(0, Carried.warmth)) : rows);
     this.fixed = new Float64Array(this.pattern.column.length);
     this.places = new Int32Array(first * width * width);
     this.place();
@@ -133,6 +134,8 @@ export class Stage {
     const { width, held, signals, outside, leaving, entering, inflow, nodes, scene } = this;
     const { node: through } = scene.course.at(t, side);
     const parts = scene.blends.at(t, side);
+    const warm = scene.blends.apart ? scene.blends.at(t, side, Carried.warmth) : undefined;
+    const last = width - 1;
     for (let k = 0; k < signals.length; k++) signals[k].read(t, side, outside, k * width);
     for (let b = 0; b < held.length; b++) this.outflow(b, x, leaving, b * width);
     for (let b = 0; b < held.length; b++) {
@@ -144,11 +147,13 @@ export class Stage {
         const [body, place] = own[e];
         const part = parts[place];
         for (let i = 0; i < width; i++) entering[i] += part * leaving[body * width + i];
+        if (warm) entering[last] += (warm[place] - part) * leaving[body * width + last];
       }
       for (let e = 0; e < from.length; e++) {
         const [signal, place] = from[e];
         const part = parts[place];
         for (let i = 0; i < width; i++) entering[i] += part * outside[signal * width + i];
+        if (warm) entering[last] += (warm[place] - part) * outside[signal * width + last];
       }
       if (!realization) {
         const rate = q / volume[0];
@@ -208,11 +213,11 @@ export class Stage {
     }
   }
 
-  /** How what flows moves each state with each other at a time, 1/s: the same for every component. */
-  private flowRows(t: number): Map<number, number>[] {
+  /** How what flows moves each state with each other at a time, 1/s: the same for every component that is carried alike. */
+  private flowRows(t: number, of: Carried = Carried.liquid): Map<number, number>[] {
     const { blends, course } = this.scene;
     const { node: through } = course.at(t, 1);
-    const parts = blends.at(t, 1);
+    const parts = blends.at(t, 1, of);
     const rows = Array.from({ length: this.size / this.width }, (_, s) => new Map<number, number>([[s, 0]]));
     const add = (s: number, j: number, a: number): void => {
       if (a !== 0) rows[s].set(j, (rows[s].get(j) ?? 0) + a);
@@ -278,8 +283,10 @@ export class Stage {
   private fill(rows: readonly ReadonlyMap<number, number>[], t: number): void {
     const { width, pattern, fixed } = this;
     this.stamp = this.scene.course.at(t, 1).stamp;
-    rows.forEach((row, s) => {
+    const warm = this.scene.blends.apart ? this.flowRows(t, Carried.warmth) : rows;
+    rows.forEach((liquid, s) => {
       for (let i = 0; i < width; i++) {
+        const row = i === width - 1 ? warm[s] : liquid;
         for (let k = pattern.start[s * width + i]; k < pattern.start[s * width + i + 1]; k++) {
           const j = Math.floor(pattern.column[k] / width);
           if (pattern.column[k] - j * width === i) fixed[k] = row.get(j) ?? 0;
@@ -288,3 +295,9 @@ export class Stage {
     });
   }
 }
+
+/** Rows with what either has. */
+const together = (
+  a: readonly ReadonlyMap<number, number>[],
+  b: readonly ReadonlyMap<number, number>[],
+): ReadonlyMap<number, number>[] => a.map((row, s) => new Map([...row, ...b[s]]));

@@ -2,6 +2,7 @@ import { requireCarried } from "../compile/carried.js";
 import type { Plant } from "../compile/plant.js";
 import type { Chemistry } from "../model/chemistry.js";
 import type { Duty } from "../model/duty.js";
+import { ascending } from "../numerics/ascending.js";
 import type { Halt } from "../numerics/odex.js";
 import { RefusedError } from "../problems/refused.js";
 import { problem } from "../problems/report.js";
@@ -11,11 +12,13 @@ import { holdings } from "../reaction/holdings.js";
 import { depleted } from "../reaction/kinetics.js";
 import { steadyState } from "../reaction/steady.js";
 import { type Amounts, amountsOf, closureOf, conservedClosure } from "./balance.js";
+import { Cooled } from "./cooled.js";
 import { changes } from "./course-line.js";
 import { flowsOf } from "./flows.js";
 import { feedSignals } from "./inputs.js";
 import { Run } from "./run.js";
 import { sceneOf } from "./scene.js";
+import type { Signal } from "./signal.js";
 import type { Start } from "./start.js";
 
 export interface TransientOptions {
@@ -120,13 +123,13 @@ export function transient(
   options: TransientOptions = {},
 ): Transient {
   requireCarried(plant, "transient");
-  requireNoExchangers(duty);
+  requireSteadyExchangers(duty);
   const settings = options.settings ?? {};
   const conditions = conditionsOf(plant, chemistry, duty, settings);
   const flows = flowsOf(plant, duty, settings);
   const scene = sceneOf(plant, conditions, flows);
   const { species } = conditions;
-  const clock = Float64Array.from(times);
+  const clock = ascending(times);
   const start = startOf(plant, chemistry, duty, conditions, settings);
   const names = (options.at ?? plant.network.compartments.map((c) => c.name)).filter((name) => plant.exit.has(name));
   const nodeOf = (name: string): number => plant.exit.get(name) as number;
@@ -149,14 +152,22 @@ export function transient(
     for (const i of conditions.spends) if (out[i] <= depleted) out[i] = 0;
     for (let i = 0; i < scene.width; i++) out[i] = Math.max(out[i], 0) * conditions.scale[i];
   };
+  const leaving = (name: string, node: number): Signal => {
+    const signal = run.signal(node);
+    const warming = scene.warmings.find((w) => w.from === node && plant.outlets.some((o) => o.name === name));
+    if (!warming) return signal;
+    const drop = (warming.gain * plant.feeds[warming.feed].flow) / plant.columns.inflow[node];
+    return new Cooled(signal, run.ask.feeds[warming.feed], drop, scene.width);
+  };
   const course = (name: string, node: number): Course => {
     const values = new Float64Array(clock.length * n);
     const temperatures = scene.width > n ? new Float64Array(clock.length) : undefined;
     const row = new Float64Array(scene.width);
     const seen = plant.columns.inflow[node] > 0 || scene.sort[node] === "cell";
+    const signal = seen ? leaving(name, node) : undefined;
     clock.forEach((t, k) => {
-      if (t > end || !seen) row.fill(Number.NaN);
-      else run.signal(node).read(t, 1, row, 0);
+      if (t > end || !signal) row.fill(Number.NaN);
+      else signal.read(t, 1, row, 0);
       toSi(row);
       values.set(row.subarray(0, n), k * n);
       if (temperatures) temperatures[k] = row[n];
@@ -189,7 +200,7 @@ export function transient(
     },
     look(name) {
       const node = plant.outlets.find((o) => o.name === name)?.node ?? nodeOf(name);
-      const signal = run.signal(node);
+      const signal = leaving(name, node);
       const row = new Float64Array(scene.width);
       return {
         at(t, out, side = 1) {
@@ -218,10 +229,11 @@ export function transient(
   };
 }
 
-/** What leaves warms what enters at the same time: a circle that is not followed in time. @throws RefusedError */
-function requireNoExchangers({ heat }: Duty): void {
+/** How much an exchanger passes hangs on the flows. @throws RefusedError */
+function requireSteadyExchangers({ heat, flowCourses }: Duty): void {
+  if (!flowCourses || flowCourses.size === 0) return;
   const refused = (heat?.exchangers ?? []).map(({ at, feed }) =>
-    problem("not-yet", at, { what: `a transient with \`heat-exchange\` (of '${feed}')` }),
+    problem("not-yet", at, { what: `\`heat-exchange\` (of '${feed}') in a transient beside a flow that changes` }),
   );
   if (refused.length > 0) throw new RefusedError(refused);
 }
@@ -253,7 +265,7 @@ function balanceOf(run: Run, plant: Plant, { species, scale, numbers }: Conditio
   const toSi = (x: Float64Array): Float64Array => Float64Array.from(species, (_, i) => scale[i] * x[i]);
   const closure = closureOf(amounts);
   const conserved = conservedClosure(conservedBy(numbers, n), amounts);
-  const worst = closure.reduce((most, c) => (Math.abs(c) <= most ? most : Math.abs(c)), conserved);
+  const worst = Math.max(conserved, ...Array.from(closure, Math.abs));
   return {
     fed: toSi(amounts.fed),
     left: toSi(amounts.left),

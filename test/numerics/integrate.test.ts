@@ -233,3 +233,33 @@ test("an absolute tolerance of 0, or one per component, is taken", () => {
   const loose = integrate({ rhs, start: [1, 0], from: 0, to: 1, absolute: [1e-3, 1e-12], relative: 1e-3 });
   expect(loose.stats.rhs).toBeLessThan(run.stats.rhs);
 });
+
+test("outputs in any order come in that order, each its own", () => {
+  const grows = (_: number, y: Float64Array, dy: Float64Array): void => {
+    dy[0] = y[0];
+  };
+  const { times, states } = integrate({ rhs: grows, start: [1], from: 0, to: 1, outputs: [1, 0.5, 2, 0.25, 0.5] });
+  expect([...times]).toEqual([1, 0.5, 0.25, 0.5]);
+  states.forEach((y, k) => {
+    expect(y[0]).toBeCloseTo(Math.exp(times[k]), 8);
+  });
+});
+
+test("times, tolerances and methods that are none are refused", () => {
+  const rhs = (_: number, y: Float64Array, dy: Float64Array): void => {
+    dy[0] = -y[0];
+  };
+  const run = (more: object) => () => integrate({ rhs, start: [1], from: 0, to: 1, ...more });
+  for (const more of [
+    { to: Number.NaN },
+    { to: Number.POSITIVE_INFINITY },
+    { from: Number.NEGATIVE_INFINITY },
+    { outputs: [Number.NaN] },
+    { stops: [Number.NaN] },
+    { relative: Number.NaN },
+    { absolute: [-1] },
+    { method: "bdf" },
+    { maxSteps: Number.NaN },
+  ])
+    expect(run(more)).toThrow(RangeError);
+});

@@ -104,12 +104,13 @@ describe("heat in time", () => {
     expect(transientFigures(plant, duty, run).map((f) => f.value)).toEqual([3600, 0]);
   });
 
-  test("an exchanger is refused with its place: what leaves would warm what enters", () => {
+  test("an exchanger beside a flow that changes is refused with its place: what it passes hangs on the flow", () => {
     const { plant, duty } = read(
       train,
       `feeds: {feed: {A: 1 mol/L, temperature: 30 degC}}
 heat: adiabatic
-heat-exchange: [{warms: feed, from: product, effectiveness: 70 %}]`,
+heat-exchange: [{warms: feed, from: product, effectiveness: 70 %}]
+flows: {feed: {from: 10 L/min, to: 5 L/min}}`,
     );
     let problems: readonly Problem[] = [];
     try {

@@ -5,7 +5,7 @@ import { formatNumber } from "../../units/format.js";
 import { inUnit } from "../../units/unit.js";
 import { squared } from "../units.js";
 import { errorText, supported } from "./digits.js";
-import { blocks, pairs, table } from "./table.js";
+import { blocks, pairs, table, wrap } from "./table.js";
 
 /** What the data of a trial say by themselves, for people. */
 export function momentsText(title: string, { readings, grade, findings, notSupported }: MomentsResult): string {
@@ -14,12 +14,15 @@ export function momentsText(title: string, { readings, grade, findings, notSuppo
     `${title}: grade ${grade}, ${grades[grade]}`,
     ...readings.map(readingText),
     findings
-      .map(
-        (f) =>
-          `${f.weight} ${f.code} at ${f.at}: ${f.message} (${f.evidence})\n  could be: ${f.couldBe}\n  next: ${f.next}`,
+      .map((f) =>
+        [
+          wrap(`${f.weight} ${f.code} at ${f.at}: `, `${f.message} (${f.evidence})`, 100, 4),
+          wrap("  could be: ", f.couldBe),
+          wrap("  next: ", f.next),
+        ].join("\n"),
       )
       .join("\n"),
-    notSupported.length > 0 ? `not told: ${notSupported.join(";\n          ")}` : "",
+    notSupported.map((words, k) => wrap(k === 0 ? "not told: " : "          ", words)).join("\n"),
   );
 }
 

@@ -30,15 +30,17 @@ export function pairs(rows: readonly (readonly [string, string])[], indent = 2):
 export const blocks = (...parts: readonly (string | undefined)[]): string =>
   parts.filter((p) => p !== undefined && p !== "").join("\n\n");
 
-/** Text broken between words to lines of at most `columns`, the later ones indented as deep as the first says. */
-export function wrap(first: string, text: string, columns = 100): string {
+/** Text broken between words to lines of at most `columns`, the later ones indented by `hang`: as deep as the first says. */
+export function wrap(first: string, text: string, columns = 100, hang = width(first)): string {
   const lines: string[] = [];
   let line = first;
+  let empty = true;
   for (const word of text.split(" ")) {
-    if (line.trim() !== "" && line !== first && width(line) + width(word) + 1 > columns) {
+    if (!empty && width(line) + width(word) + 1 > columns) {
       lines.push(line);
-      line = " ".repeat(width(first)) + word;
-    } else line += line === first ? word : ` ${word}`;
+      line = " ".repeat(hang) + word;
+    } else line += empty ? word : ` ${word}`;
+    empty = false;
   }
   return [...lines, line].join("\n");
 }

@@ -26,6 +26,12 @@ export const dataEntries = {
     fix: "name the column that holds the flow, or give the flow as a value",
     example: { feed: "feed", file: "flow.csv" },
   }),
+  "flow-log-still": entry({
+    severity: "error",
+    says: (d: { feed: string; file: string }) => `nothing flows at the start of the log of '${d.feed}', ${d.file}`,
+    fix: "begin it with a row at which the feed flows: before the first row the flow is as in it, and what stands still has no direction",
+    example: { feed: "feed", file: "flow.csv" },
+  }),
   "flow-log-gap": entry({
     severity: "warning",
     says: (d: { feed: string; from: string; to: string; row: number; file: string }) =>

@@ -116,7 +116,7 @@ export const dutyShape = record({
     ),
   },
   "heat-exchange": {
-    says: "Feeds that what leaves warms (or cools) before they enter, in counterflow, beside `heat`. A vessel that warms its own feed may have several steady states. In steady states only: a duty with it is not followed in time yet.",
+    says: "Feeds that what leaves warms (or cools) before they enter, in counterflow, beside `heat`. A vessel that warms its own feed may have several steady states. In time it passes heat at once, by the flows that there are; beside a flow that changes in time it is refused.",
     example: "[{warms: feed, from: product, effectiveness: 70 %}]",
     needs: "heat",
     shape: list(

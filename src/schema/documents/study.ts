@@ -29,7 +29,7 @@ const swept: Shape = record({
   duty: dutyOf,
   change: changeOf,
   over: {
-    says: "One or two inputs: parameters and constants of the network, `feed.flow`, `feed.A` (what a feed brings), constants of the chemistry, `temperature`.",
+    says: "One or two inputs: parameters and constants of the network, `feed.flow`, `feed.A` (what a feed brings), constants of the chemistry, `temperature`, and `chain.repeat` (in whole steps).",
     required: true,
     example: "{riser: {between: [50 L, 400 L], points: 12}}",
     shape: named(
