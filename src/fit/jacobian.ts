@@ -106,7 +106,10 @@ function weighCurves(
 ): void {
   for (const [b, block] of setup.blocks.entries()) {
     const { scale } = at.terms[b];
-    for (let i = 0; i < block.time.length; i++) into[block.from + i] = weight[block.from + i] * scale * slopes[b][i];
+    const own = into.subarray(block.from, block.from + block.time.length);
+    if (block.condensed) block.condensed.weigh(slopes[b], own);
+    else for (let i = 0; i < own.length; i++) own[i] = weight[block.from + i] * slopes[b][i];
+    for (let i = 0; i < own.length; i++) own[i] *= scale;
     projectors[b].apart(into);
   }
 }
