@@ -1,6 +1,8 @@
 import { expect, test } from "vitest";
+import { dot, norm } from "../../src/fit/basis.js";
 import { condense, stillStands } from "../../src/fit/condense.js";
 import { estimatesOf } from "../../src/fit/estimates.js";
+import { fullJacobian } from "../../src/fit/jacobian.js";
 import { networkModel } from "../../src/fit/network-model.js";
 import { prepare } from "../../src/fit/prepare.js";
 import { problemWith } from "../../src/fit/problem.js";
@@ -67,6 +69,12 @@ test("errors from few points are those of all, and where fronts have moved too f
   const at = problem.evaluate(x);
   if (!at) throw new Error("no vessel");
   expect(stillStands(close, problem, x)).toBe(at);
+  const there = close.evaluate(x);
+  if (!there) throw new Error("no vessel");
+  const [whole, less] = [fullJacobian(problem, x, at), fullJacobian(close, x, there)];
+  for (const [j, a] of whole.entries())
+    for (const [k, b] of whole.entries())
+      expect(Math.abs(dot(less[j], less[k]) - dot(a, b))).toBeLessThan(1e-7 * norm(a) * norm(b));
   const settled = { problem, weights: weightsFor(setup), x, at, converged: true };
   const [all, few] = [estimatesOf(settled), estimatesOf(settled, close)];
   expect(few.variance).toBe(all.variance);
