@@ -1,5 +1,6 @@
 import { checkTrial } from "../check/trial.js";
 import { compile } from "../compile/compile.js";
+import type { Plant } from "../compile/plant.js";
 import { plantFollowing } from "../compile/sends.js";
 import { type ReadingMoments, readMoments } from "../data/moments.js";
 import { settingsOfDay } from "../fit/settings.js";
@@ -9,7 +10,7 @@ import { parseNetwork } from "../parse/network.js";
 import { parseTrial } from "../parse/trial.js";
 import { collector } from "../problems/report.js";
 import { tracerPlant } from "../simulate/tracer-plant.js";
-import { placesOf } from "../study/trial-facts.js";
+import { hangsOnGuess, placesOf } from "../study/trial-facts.js";
 import { inUnit } from "../units/unit.js";
 import { ageCurvesCsv } from "./age-csv.js";
 import type { Context } from "./context.js";
@@ -35,13 +36,22 @@ export function moments(file: string, { vessel, output }: MomentsOptions, { inpu
   requireTracer(trial, "`moments`");
   const network = vesselFor(trial, vessel, inputs);
   const { plant } = network ? compile(network, settingsOfDay(network, trial, {})) : { plant: undefined };
+  const guessed = (of: (plant: Plant) => number): boolean =>
+    network !== undefined && hangsOnGuess(network, settingsOfDay(network, trial, {}), of);
   const result = readMoments(
     trial,
     network
       ? {
-          flowAt: (at) => knownOnDay(network, trial, (plant) => flowThrough(plant, at)),
-          volume: knownOnDay(network, trial, (plant) => tracerPlant(plant, heldBack(trial)).volume.total),
-          throughflow: knownOnDay(network, trial, (plant) => vesselOf(plant).feed),
+          flowAt: (at) =>
+            guessed((plant) => flowThrough(plant, at))
+              ? undefined
+              : knownOnDay(network, trial, (plant) => flowThrough(plant, at)),
+          ...(guessed((plant) => plant.volume.total)
+            ? { guessed: true }
+            : { volume: knownOnDay(network, trial, (plant) => tracerPlant(plant, heldBack(trial)).volume.total) }),
+          ...(guessed((plant) => vesselOf(plant).feed)
+            ? {}
+            : { throughflow: knownOnDay(network, trial, (plant) => vesselOf(plant).feed) }),
           ...(plant ? placesOf(plantFollowing(plant, trial.tracer?.follows?.of)) : {}),
           ...(trial.clock ? { timeUnit: network.units.time } : {}),
         }

@@ -44,9 +44,10 @@ export interface CleanCurve {
  * line delay, baseline, decay. The line's
  * lag and the length of a pulse do not change the curve: what they add to its moments is returned beside it (a
  * rectangular pulse of width w adds w^2/12 to the variance about its middle; a first-order lag its own moments).
+ * @param judged noise of the same log, where it is known already
  * @returns undefined for a reading without data
  */
-export function cleanReading(trial: Trial, reading: Reading): CleanCurve | undefined {
+export function cleanReading(trial: Trial, reading: Reading, judged?: Noise): CleanCurve | undefined {
   const series = reading.series;
   const injection = trial.injections[0];
   if (!series || !injection) return undefined;
@@ -105,7 +106,7 @@ export function cleanReading(trial: Trial, reading: Reading): CleanCurve | undef
   const start = -width / 2;
   const before = t.findIndex((s) => s >= start);
   const count = before < 0 ? t.length : before;
-  let noise = noiseOf(t, y, count, reading);
+  let noise = noiseOf(t, y, count, reading, isStep, judged);
   const typical = (noise.sd[0] ?? 0) * Math.sqrt(inflation(noise.persistence.lag1));
   const { decay = 0, loss = 0 } = trial.tracer ?? {};
   const lost = decay > 0 || (loss > 0 && !isStep);

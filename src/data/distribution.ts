@@ -1,4 +1,5 @@
 import type { RawMoments, Response } from "./response.js";
+import { slopesOf } from "./smooth.js";
 
 /** E and F on the points of a response, and between and beyond them. Times in s. */
 export interface Distribution {
@@ -8,37 +9,32 @@ export interface Distribution {
   readonly F: Float64Array;
   /** F at any time; beyond the last point by the fitted tail. */
   cumulative(t: number): number;
-  /** The first time at which F reaches p; undefined where the record ends before. */
+  /** The time at which F reaches p, the middle of all where noise lets it do so several times; undefined where the record ends before. */
   quantile(p: number): number | undefined;
 }
 
 /**
- * E = c / area and its integral for a pulse (E straight between points, so F is a parabola there); F and its slope for
- * a step. The last point's F is short of 1 by what the tail holds.
+ * E = c / area and its integral for a pulse; F and its slope for a step. Between points F is the cubic that has the slope E at
+ * them, held from overshooting as F. N. Fritsch, R. E. Carlson, SIAM J. Numer. Anal. 17 (1980) 238-246 do. The last point's F is
+ * short of 1 by what the tail holds.
  */
 export function distributionOf(response: Response, moments: Pick<RawMoments, "area">): Distribution {
-  const { time, value, tail } = response;
+  const { time, tail } = response;
   const n = time.length;
-  const E = new Float64Array(n);
-  const F = new Float64Array(n);
-  if (response.is === "density") {
-    // The trapezoid's own area, so that F ends where the tail begins, whatever rule the moments took.
-    let area = 0;
-    for (let i = 1; i < n; i++) area += ((value[i] + value[i - 1]) / 2) * (time[i] - time[i - 1]);
-    const beyond = tail.is === "exponential" ? tail.level / tail.rate : 0;
-    const whole = area + beyond > 0 ? area + beyond : moments.area;
-    for (let i = 0; i < n; i++) E[i] = value[i] / whole;
-    for (let i = 1; i < n; i++) F[i] = F[i - 1] + ((E[i] + E[i - 1]) / 2) * (time[i] - time[i - 1]);
-  } else {
-    for (let i = 0; i < n; i++) F[i] = 1 - value[i];
-    for (let i = 0; i < n; i++) {
-      const [a, b] = [Math.max(0, i - 1), Math.min(n - 1, i + 1)];
-      E[i] = time[b] > time[a] ? (F[b] - F[a]) / (time[b] - time[a]) : 0;
-    }
-  }
-  const curved = response.is === "density";
+  const { E, F } = response.is === "density" ? ofDensity(response, moments) : ofWashout(response);
   const left = 1 - F[n - 1];
   const rate = tail.is === "exponential" ? tail.rate : undefined;
+  const within = (i: number) => pieceOf(time[i + 1] - time[i], F[i + 1] - F[i], E[i], E[i + 1]);
+  const crossing = (i: number, p: number): number => {
+    const risen = within(i);
+    let [low, high] = [0, 1];
+    while (high - low > 1e-12) {
+      const middle = (low + high) / 2;
+      if (F[i] + risen(middle) < p) low = middle;
+      else high = middle;
+    }
+    return time[i] + high * (time[i + 1] - time[i]);
+  };
   return {
     time,
     E,
@@ -47,25 +43,51 @@ export function distributionOf(response: Response, moments: Pick<RawMoments, "ar
       if (t <= time[0]) return t < time[0] ? 0 : F[0];
       if (t >= time[n - 1]) return rate === undefined ? F[n - 1] : 1 - left * Math.exp(-rate * (t - time[n - 1]));
       const i = below(time, t);
-      const h = time[i + 1] - time[i];
-      const x = t - time[i];
-      if (!curved) return F[i] + ((F[i + 1] - F[i]) * x) / h;
-      return F[i] + E[i] * x + ((E[i + 1] - E[i]) * x * x) / (2 * h);
+      return F[i] + within(i)((t - time[i]) / (time[i + 1] - time[i]));
     },
     quantile(p) {
       if (p <= F[0]) return time[0];
-      for (let i = 0; i + 1 < n; i++) {
-        if (F[i + 1] < p) continue;
-        const h = time[i + 1] - time[i];
-        const want = p - F[i];
-        if (!curved) return time[i] + (want / (F[i + 1] - F[i])) * h;
-        const bend = (E[i + 1] - E[i]) / h;
-        // The stable root of E x + bend x^2 / 2 = want.
-        return time[i] + (2 * want) / (E[i] + Math.sqrt(Math.max(0, E[i] * E[i] + 2 * bend * want)));
+      const reached = F.findIndex((f) => f >= p);
+      if (reached > 0) {
+        let last = reached;
+        for (let i = reached; i + 1 < n; i++) if (F[i] < p && F[i + 1] >= p) last = i + 1;
+        return (crossing(reached - 1, p) + crossing(last - 1, p)) / 2;
       }
       return rate === undefined || !(left > 0) ? undefined : time[n - 1] + Math.log(left / (1 - p)) / rate;
     },
   };
+}
+
+/** The rise of F from the start of an interval to the share x of it: a cubic with these slopes at its ends; a line where it falls. */
+function pieceOf(h: number, rise: number, first: number, last: number): (x: number) => number {
+  if (!(rise > 0) || !(h > 0)) return (x) => rise * x;
+  const [a, b] = [first, last].map((slope) => Math.max(0, (slope * h) / rise));
+  // Within a circle of radius 3 the cubic never turns.
+  const less = Math.min(1, 3 / Math.hypot(a, b));
+  const [u, v] = [less * a, less * b];
+  return (x) => rise * x * (u + x * (3 - 2 * u - v + x * (u + v - 2)));
+}
+
+/** The curve's own area, so that F ends where the tail begins, whatever rule the moments took. */
+function ofDensity(
+  { time, value, tail, sampling }: Response,
+  moments: Pick<RawMoments, "area">,
+): Pick<Distribution, "E" | "F"> {
+  const F = new Float64Array(time.length);
+  const slope = slopesOf(time, value, sampling.smooth);
+  for (let i = 1; i < F.length; i++) {
+    const h = time[i] - time[i - 1];
+    const bent = sampling.smooth[i - 1] === 1 ? ((slope[i - 1] - slope[i]) * h * h) / 12 : 0;
+    F[i] = F[i - 1] + ((value[i] + value[i - 1]) / 2) * h + bent;
+  }
+  const beyond = tail.is === "exponential" ? tail.level / tail.rate : 0;
+  const area = F[F.length - 1] + beyond;
+  const whole = area > 0 ? area : moments.area;
+  return { E: value.map((c) => c / whole), F: F.map((f) => f / whole) };
+}
+
+function ofWashout({ time, value, sampling }: Response): Pick<Distribution, "E" | "F"> {
+  return { E: slopesOf(time, value, sampling.smooth).map((s) => -s), F: value.map((w) => 1 - w) };
 }
 
 function below(time: Float64Array, t: number): number {

@@ -16,10 +16,10 @@ export function momentErrors(
 ): Readonly<Record<keyof typeof figures, number>> {
   const moved = movedBaselines(curve, response, rule);
   const error = (name: keyof typeof figures): number => {
-    const gradient = gradientOf(name, found);
+    const gradient = gradientOf(name, response, found);
     const doubt = found.doubt[name];
     const points = Math.hypot(
-      pointsError(gradient, response, curve),
+      ownError(name, response, found, curve),
       doubtsError(gradient, response, curve, name === "area" ? 1 / (1 - found.tail.area) : 1),
     );
     if (curve.baseline?.tail) return Math.hypot(points, jointError(gradient, doubt, response, curve), doubt.hidden);
@@ -39,18 +39,42 @@ export function momentErrors(
 }
 
 /** Change of a figure by each point. */
-function gradientOf(name: keyof typeof figures, { gradient, mean, variance, third }: RawMoments): Float64Array {
-  if (name === "skewness")
-    return gradient.third.map((g, i) => g / variance ** 1.5 - (1.5 * third * gradient.variance[i]) / variance ** 2.5);
-  if (name === "relative")
-    return gradient.variance.map((g, i) => g / mean ** 2 - (2 * variance * gradient.mean[i]) / mean ** 3);
-  return gradient[name];
+function gradientOf(name: keyof typeof figures, { time, weight }: Response, found: RawMoments): Float64Array {
+  const impact = impactOf(name, found);
+  return time.map((t, i) => weight[i] * impact(t));
 }
 
-/** Scatter of the points, as far as neighbours hang together, and what was not seen before the first of them. */
-function pointsError(gradient: Float64Array, { sd, weight, front, time }: Response, { noise }: CleanCurve): number {
-  const early = front ? front * (gradient[0] / weight[0]) : 0;
-  return Math.sqrt(early ** 2 + varianceOfSum(gradient, sd, time, noise.persistence));
+/** One standard error of a figure by the scatter of the points and what lies between them, all else being known. */
+export function ownError(name: keyof typeof figures, response: Response, found: RawMoments, curve: CleanCurve): number {
+  return Math.hypot(
+    pointsError(gradientOf(name, response, found), response, curve),
+    samplingError(impactOf(name, found), response),
+  );
+}
+
+/** Change of a figure for one more unit of integral at a time. */
+function impactOf(name: keyof typeof figures, { impact, mean, variance, third }: RawMoments): (time: number) => number {
+  if (name === "skewness")
+    return (t) => impact.third(t) / variance ** 1.5 - (1.5 * third * impact.variance(t)) / variance ** 2.5;
+  if (name === "relative") return (t) => impact.variance(t) / mean ** 2 - (2 * variance * impact.mean(t)) / mean ** 3;
+  return impact[name];
+}
+
+/** Scatter of the points, as far as neighbours hang together; that of a step's last ones is in its final level, too. */
+function pointsError(gradient: Float64Array, { sd, time, ends, value }: Response, { noise }: CleanCurve): number {
+  if (!ends) return Math.sqrt(varianceOfSum(gradient, sd, time, noise.persistence));
+  const [n, pull] = [gradient.length, gradient.reduce((sum, g, i) => sum + g * (1 - value[i]), 0)];
+  const whole = gradient.map((g, i) => (i >= n - ends.points ? g - pull / ends.points : g));
+  const first = gradient.reduce((sum, g, i) => sum + g * value[i], 0) * ends.first;
+  const last = ends.points > 0 ? 0 : pull * ends.last;
+  return Math.hypot(first, last, Math.sqrt(varianceOfSum(whole, sd, time, noise.persistence)));
+}
+
+/** What the samples leave open between them. */
+function samplingError(impact: (time: number) => number, { time, sampling }: Response): number {
+  let sum = 0;
+  for (const [i, s] of sampling.unsure.entries()) sum += (s * impact((time[i] + time[i + 1]) / 2)) ** 2;
+  return Math.sqrt(sum);
 }
 
 /** What calibration and limits leave open; a step is read against its own levels, where a slope cancels. */

@@ -196,6 +196,14 @@ const wording = {
     couldBe: "a logger that stopped, or rows with words for missing values",
     next: "look for the missing rows; a fit needs no line across",
   },
+  "flow-varied": {
+    weight: "note",
+    message:
+      "the flow varied: recovery, effective volume, shape and indices are read over the volume that has passed; mean, variance and percentiles in time are those of this day",
+    couldBe:
+      "a vessel whose volume varied, too, or whose inner flows do not follow: then volumes are no measure either",
+    next: "fit a network, which follows the logged flow; repeat at a steady flow for figures in time",
+  },
   "noise-correlated": {
     weight: "note",
     message: "neighbouring errors hang together: standard errors are those of fewer points",

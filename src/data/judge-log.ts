@@ -55,10 +55,10 @@ function judgeGaps({ at, timeUnit }: CleanCurve, { time, value, is }: Response, 
 }
 
 function judgePersistence({ noise, at, time }: CleanCurve): Finding[] {
-  const { lag1, from } = noise.persistence;
+  const { lag1, from, judged } = noise.persistence;
   if (!from) return [];
   const effective = time.length / inflation(lag1);
-  const evidence = `correlation of neighbours ${formatNumber(lag1, 2)} over ${from.points} points before the injection; ${time.length} points are worth ${formatNumber(effective, 3)}`;
+  const evidence = `correlation of neighbours ${formatNumber(lag1, 2)} over ${from.points} points ${judged === "silence" ? "before the injection" : "about a smooth curve"}; ${time.length} points are worth ${formatNumber(effective, 3)}`;
   return [finding("noise-correlated", at, evidence)];
 }
 

@@ -5,6 +5,7 @@ import { extent } from "./extent.js";
 import type { Figure, Known } from "./figure.js";
 import { type Finding, finding } from "./finding.js";
 import { isNoise } from "./noise.js";
+import { inflation } from "./persistence.js";
 import type { RawMoments, Response } from "./response.js";
 
 const percent = (x: number): string => `${formatNumber(100 * x, 3)} %`;
@@ -55,7 +56,8 @@ export function judgeEnds(curve: CleanCurve, response: Response, moments: RawMom
   if (!wanted && before >= 3 && response.is === "density") {
     const early = value.subarray(0, before);
     const mean = early.reduce((sum, c) => sum + c, 0) / before;
-    const error = Math.sqrt(early.reduce((sum, c) => sum + (c - mean) ** 2, 0) / (before - 1) / before);
+    const own = early.reduce((sum, c) => sum + (c - mean) ** 2, 0) / (before - 1) / before;
+    const error = Math.sqrt(own * inflation(curve.noise.persistence.lag1));
     if (Math.abs(mean) > Math.max(3 * error, 0.005 * peak)) {
       found.push(
         finding(
@@ -136,10 +138,17 @@ export function judgeBaseline(curve: CleanCurve, found: RawMoments, meanError: n
 }
 
 /** Mean against volume over flow: told only where they differ by more than two standard errors. */
-export function judgeMean(at: string, mean: Figure, tau: Known, time: Unit, unseen: number): Finding[] {
+export function judgeMean(
+  at: string,
+  mean: Figure,
+  tau: Known,
+  unit: Unit,
+  unseen: number,
+  byVolume = false,
+): Finding[] {
   if (mean.value === undefined) return [];
   const error = Math.hypot(mean.standardError ?? 0, tau.sd ?? 0);
-  const evidence = `mean ${formatQuantity(mean.value, time)}, volume over flow ${formatQuantity(tau.value, time)}, ratio ${formatNumber(mean.value / tau.value, 3)} ± ${formatNumber(error / tau.value, 2)}`;
+  const evidence = `${byVolume ? "mean of the volume passed" : "mean"} ${formatQuantity(mean.value, unit)}, ${byVolume ? "volume" : "volume over flow"} ${formatQuantity(tau.value, unit)}, ratio ${formatNumber(mean.value / tau.value, 3)} ± ${formatNumber(error / tau.value, 2)}`;
   // Rounding of a file's numbers is no evidence: 0.5 % apart at least.
   const apart = Math.max(2 * error, 0.005 * tau.value);
   if (mean.value > tau.value + apart) return [finding("mean-late", at, evidence)];

@@ -4,22 +4,21 @@ import { dimensions, sameDimension } from "../units/dimension.js";
 import { isUnitFault, parseUnit } from "../units/parse.js";
 import { one, type Unit } from "../units/unit.js";
 import { type CleanCurve, cleanReading, productUnit, takeOff } from "./clean.js";
-import { distributionOf } from "./distribution.js";
-import { momentErrors } from "./error.js";
 import { type Figure, figure, type Known } from "./figure.js";
 import { type Finding, finding } from "./finding.js";
-import { areaError, closedPeclet, efficiency, holdback, meanOver, segregation, slopeOf } from "./indices.js";
+import { effectiveVolume, spreadIndices, vesselIndices } from "./index-figures.js";
 import { inletMoments } from "./inlet.js";
 import { gradeOf, hopeless, judgeBaseline, judgeEnds, judgeMean, judgeRecovery } from "./judge.js";
 import { judgeLog } from "./judge-log.js";
-import { varianceOfSum } from "./persistence.js";
-import { agesOf, percentileError } from "./read-curve.js";
+import { flowRange, overVolume, passedBy } from "./passed.js";
+import { agesOf } from "./read-curve.js";
 import { onlyFlow, recoveryOf, tauOf, whyNoRecovery } from "./recovery.js";
 import { momentsOf } from "./response.js";
 import { type MomentsOptions, type MomentsResult, noiseFigure, nothing, type ReadingMoments } from "./result.js";
 import { seenResponse } from "./seen.js";
-import { shapeOf, washoutError } from "./shape.js";
+import { shapeOf } from "./shape.js";
 import { judgeShape } from "./shape-rules.js";
+import { type Sight, sightOf } from "./sight.js";
 
 export type { MomentsOptions, MomentsResult, ReadingMoments } from "./result.js";
 
@@ -74,7 +73,7 @@ export function readCurve(
   const mixed = reading.places.length > 1;
   const flow = mixed ? undefined : (options.flowAt?.(reading.at) ?? onlyFlow(trial));
   const whole = options.throughflow ?? flow;
-  const rule = options.rule ?? "trapezoid";
+  const rule = options.rule ?? "cubic";
   const basis = basisOf(trial, options);
   const stop =
     (trial.injections.length > 1
@@ -92,17 +91,11 @@ export function readCurve(
 
   const time = options.timeUnit ?? curve.timeUnit;
   const time2 = productUnit(`${time.name}^2`, time, time);
+  const volumeUnit = volumeUnitOf(trial, options);
   const inlet = injection.form.is === "signal" ? inletMoments(injection, rule) : undefined;
-  const mean = found.mean - curve.added.mean - (inlet?.mean ?? 0);
-  const variance = found.variance - curve.added.variance - (inlet?.variance ?? 0);
-  const third = found.third - curve.added.third - (inlet?.third ?? 0);
-  const known = response.tail.is === "closed" || response.tail.is === "exponential";
-  const errors = momentErrors(curve, response, found, rule);
+  const own = sightOf(curve, response, found, rule, inlet);
+  const { errors, known, mean, variance, third } = own;
   const skew = variance > 0 ? third / variance ** 1.5 : undefined;
-
-  const F = distributionOf(response, found);
-  const at = (p: number): number | undefined => (inlet ? undefined : shifted(F.quantile(p), curve.added.mean));
-  const [t10, t90] = [at(0.1), at(0.9)];
   const meanFigure = figure(known ? mean : undefined, time, errors.mean);
   const varianceFigure = figure(known && variance > 0 ? variance : undefined, time2, errors.variance);
   findings.push(...judgeBaseline(curve, found, errors.mean));
@@ -110,7 +103,23 @@ export function readCurve(
   const alone = !way || (way.isOutlet && way.others.length === 0);
   const unseen = way?.others.filter((name) => !trial.readings.some((r) => r.at === name)) ?? [];
   const expected = alone || injection.form.is === "step" || !way?.isOutlet ? undefined : way.share;
-  const recovery = recoveryOf(injection, reading, curve, found, flow, recovered, inlet, errors.area, basis);
+  const passed = passedBy(trial, curve, options.feeds);
+  // With a flow that varied a vessel of constant volume sees volumes, not times.
+  const aged = passed && alone && !inlet ? agedSight(trial, reading, overVolume(curve, passed), whole, options) : own;
+  if (passed) {
+    findings.push(finding("flow-varied", curve.at, flowRange(passed, volumeUnit, time)));
+    if (!aged || aged === own)
+      notSupported.push(
+        `recovery and effective volume at '${curve.at}': the flow varied, and ${inlet ? "the inlet was measured" : alone ? "over volumes the curve has no area" : "not all of it passes here"}; fit a network`,
+      );
+  }
+  const byVolume = passed && aged && aged !== own ? aged : undefined;
+  const through = byVolume ? { value: 1, sd: passed?.unsure } : passed ? undefined : flow;
+  const { found: counted, errors: unsure } = byVolume ?? own;
+  const recovery =
+    passed && inlet
+      ? figure(undefined, one)
+      : recoveryOf(injection, reading, curve, counted, through, recovered, inlet, unsure.area, basis);
   // Outlets that were all read are judged together.
   if (expected === undefined || unseen.length > 0)
     findings.push(...judgeRecovery(curve.at, recovery, expected, expected === undefined ? [] : unseen));
@@ -118,9 +127,11 @@ export function readCurve(
     notSupported.push(
       `percentiles and indices at '${curve.at}': a measured inlet gives moments only; fit a network for the curve`,
     );
-  if (recovery.value === undefined) notSupported.push(`recovery at '${curve.at}': ${whyNoRecovery(reading, flow)}`);
+  if (recovery.value === undefined && (!passed || byVolume))
+    notSupported.push(`recovery at '${curve.at}': ${whyNoRecovery(reading, flow)}`);
 
-  const tau = alone && !options.follows ? tauOf(options, flow) : undefined;
+  const tau =
+    !alone || options.follows || (passed && !byVolume) ? undefined : byVolume ? options.volume : tauOf(options, flow);
   if (options.follows)
     notSupported.push(
       `effective volume, holdback, segregation and dead volume at '${curve.at}': the tracer divides as '${options.follows}' does, not as the liquid`,
@@ -130,17 +141,23 @@ export function readCurve(
       `effective volume, holdback, segregation and dead volume at '${curve.at}': ${way.isOutlet ? `liquid leaves by ${way.others.join(", ")}, too` : mixed ? "it is a mix of several places" : "it is not the outlet of the vessel"}`,
     );
   else if (!tau)
-    notSupported.push(`holdback, segregation and dead volume at '${curve.at}': the volume or the flow is not known`);
-  else findings.push(...judgeMean(curve.at, meanFigure, tau, time, Math.abs(found.tail.area)));
+    notSupported.push(
+      `holdback, segregation and dead volume at '${curve.at}': ${options.guessed ? "the volume hangs on parameters that a fit has yet to find: what the file begins with is no fact" : "the volume or the flow is not known"}`,
+    );
+  else {
+    const seenMean = byVolume
+      ? figure(byVolume.known ? byVolume.mean : undefined, volumeUnit, byVolume.errors.mean)
+      : meanFigure;
+    const beyond = Math.abs(counted.tail.area);
+    findings.push(...judgeMean(curve.at, seenMean, tau, byVolume ? volumeUnit : time, beyond, byVolume !== undefined));
+  }
   // A tail that noise leaves open by a little says nothing against the shape of the rest.
-  const { tail } = response;
-  const nearlyClosed = tail.is === "open" && tail.level < 0.03 * response.value.reduce((m, c) => Math.max(m, c), 0);
-  const shape =
-    inlet || !(known || nearlyClosed)
-      ? undefined
-      : shapeOf(curve, response, F, found.mean, variance / mean ** 2, found.area);
+  const shaped = byVolume ?? own;
+  const { tail, value } = shaped.response;
+  const nearlyClosed = tail.is === "open" && tail.level < 0.03 * value.reduce((m, c) => Math.max(m, c), 0);
+  const shape = inlet || !(shaped.known || nearlyClosed) ? undefined : shapeOf(shaped);
   if (shape) {
-    const judged = judgeShape(shape, time);
+    const judged = judgeShape(shape, byVolume ? volumeUnit : time);
     findings.push(...judged.findings);
     notSupported.push(...judged.not);
   }
@@ -153,66 +170,15 @@ export function readCurve(
     area: response.is === "density" ? found.area : last.area,
     mean: meanFigure.value,
     variance: varianceFigure.value,
-    t10,
+    t10: own.at(0.1),
     ...(curve.added.mean > 0 ? { approximate: true } : {}),
   });
-  const relative = variance / mean ** 2;
-  const seenError = washoutError(response, found.area, curve);
-  // What baseline and tail leave open of the area, beside the noise of the points, moves every share of it.
-  const byNoise = Math.sqrt(varianceOfSum(found.gradient.area, response.sd, response.time, curve.noise.persistence));
-  const unsure = Math.sqrt(Math.max(0, errors.area ** 2 - byNoise ** 2)) / found.area;
-  const percentile = (p: number): Figure => figure(at(p), time, percentileError(F, seenError, F.quantile(p), unsure));
-  const error10 = percentileError(F, seenError, F.quantile(0.1), unsure);
-  const error90 = percentileError(F, seenError, F.quantile(0.9), unsure);
-  const times = tau && { ...tau, error: meanOver(F.time, seenError, tau.value) + unsure };
+  const percentile = (p: number): Figure => own.percentile(p, time);
+  const acrossAll = byVolume ? { value: 1, sd: passed?.unsure } : passed ? undefined : whole;
   const indices: Record<string, Figure> = {
-    morrill: figure(
-      t10 !== undefined && t90 !== undefined && t10 > 0 ? t90 / t10 : undefined,
-      one,
-      ((t90 ?? 0) / (t10 ?? 1)) *
-        Math.hypot((error10 ?? Number.NaN) / (t10 ?? 1), (error90 ?? Number.NaN) / (t90 ?? 1)),
-    ),
-    tanks: figure(known && variance > 0 ? 1 / relative : undefined, one, errors.relative / relative ** 2),
-    peclet: figure(known ? closedPeclet(relative) : undefined, one, slopeOf(closedPeclet, relative) * errors.relative),
-    ...(whole && alone
-      ? {
-          "effective-volume": effectiveVolume(
-            whole,
-            known ? mean : undefined,
-            errors.mean,
-            volumeUnitOf(trial, options),
-          ),
-        }
-      : {}),
-    ...(times && !inlet
-      ? {
-          holdback: figure(
-            known ? holdback(F, times.value) : undefined,
-            one,
-            areaError((t) => holdback(F, t), times),
-          ),
-          segregation: figure(
-            known ? segregation(F, times.value) : undefined,
-            one,
-            areaError((t) => segregation(F, t), times),
-          ),
-          "t10-over-tau": figure(
-            t10 === undefined ? undefined : t10 / times.value,
-            one,
-            Math.hypot(error10 ?? Number.NaN, ((times.sd ?? 0) * (t10 ?? 0)) / times.value) / times.value,
-          ),
-          ...(response.is === "density" ? { "hydraulic-efficiency": efficiency(response, times) } : {}),
-        }
-      : {}),
-    ...(tau
-      ? {
-          "mean-over-tau": figure(
-            known ? mean / tau.value : undefined,
-            one,
-            Math.hypot(errors.mean / tau.value, ((tau.sd ?? 0) * mean) / tau.value ** 2),
-          ),
-        }
-      : {}),
+    ...spreadIndices(shaped),
+    ...(acrossAll && alone ? { "effective-volume": effectiveVolume(acrossAll, shaped, volumeUnit) } : {}),
+    ...(tau ? vesselIndices(shaped, tau, inlet !== undefined) : {}),
   };
   return {
     at: curve.at,
@@ -239,14 +205,24 @@ export function readCurve(
     tailShare: found.tail,
     noise: noiseFigure(curve),
     steps,
-    curve: agesOf(F, seenError, known ? mean : undefined),
+    curve: agesOf(own.F, own.error, known ? mean : undefined),
   };
 }
 
-/** Flow times mean: what takes part, at the one outlet of a vessel (errors of flow and mean carried). */
-function effectiveVolume(flow: Known, mean: number | undefined, meanError: number, unit: Unit): Figure {
-  if (mean === undefined) return figure(undefined, unit);
-  return figure(flow.value * mean, unit, Math.hypot(flow.value * meanError, (flow.sd ?? 0) * mean));
+/** The curve over the volume that has passed; undefined where it has no area. */
+function agedSight(
+  trial: Trial,
+  reading: Reading,
+  curve: CleanCurve,
+  whole: Known | undefined,
+  options: MomentsOptions,
+): Sight | undefined {
+  const injection = trial.injections[0];
+  const rule = options.rule ?? "cubic";
+  const dilution = dilutionOf(injection.at, options);
+  const seen = seenResponse(injection, reading, curve, whole, rule, dilution, basisOf(trial, options));
+  const found = "code" in seen ? undefined : momentsOf(seen.response);
+  return "code" in seen || !found ? undefined : sightOf(curve, seen.response, found, rule, undefined);
 }
 
 /** What flows count: as the vessel has it; else as the day's flow is written. */
@@ -272,5 +248,3 @@ export function dilutionOf(at: string, { feeds }: MomentsOptions): number {
   const own = feeds?.get(at);
   return own === undefined || !feeds ? 1 : own / [...feeds.values()].reduce((sum, f) => sum + f, 0);
 }
-
-const shifted = (t: number | undefined, by: number): number | undefined => (t === undefined ? undefined : t - by);

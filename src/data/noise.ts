@@ -1,27 +1,34 @@
 import type { Reading } from "../model/trial.js";
 import { fTail } from "../numerics/distributions.js";
+import { noiseAlong } from "./along.js";
 import { countingVariance } from "./counting.js";
-import { type Persistence, persistenceOf } from "./persistence.js";
+import { type Persistence, persistenceAlong, persistenceOf } from "./persistence.js";
 
 /** One standard deviation of each point, and where it is known from. */
 export interface Noise {
   readonly sd: Float64Array;
-  readonly from: "declared" | "before the injection" | "roughness of the curve";
+  readonly from: "declared" | "before the injection" | "scatter along the curve" | "roughness of the curve";
   readonly persistence: Persistence;
 }
 
 /**
- * The scatter of a reading: as declared; else that of at least 8 points before the injection; else the roughness of the
- * curve or of its last third, which are upper bounds where samples are sparse.
+ * The scatter of a reading: as declared; else that of at least 30 points before the injection; else that about a smooth curve
+ * through what comes after the curve has come half way down, together with that of fewer points before the injection; else the roughness of
+ * the curve, which is an upper bound where samples are sparse.
  * @param n how many of the points lie before the injection
+ * @param judged noise of the same log, told before: not looked for again
  */
 export function noiseOf(
   t: Float64Array,
   y: Float64Array,
   n: number,
   reading: Pick<Reading, "noise" | "calibration">,
+  isStep = false,
+  judged?: Noise,
 ): Noise {
-  const persistence = persistenceOf(t, y, n);
+  const silent = judged?.persistence ?? persistenceOf(t, y, n);
+  const late = judged || silent.judged === "silence" ? undefined : noiseAlong(...latePart(t, y, n, isStep));
+  const persistence = late ? persistenceAlong(t, late) : silent;
   const declared = reading.noise;
   if (declared) {
     const floor = declared.floor?.of([]) ?? 0;
@@ -30,10 +37,31 @@ export function noiseOf(
     const sd = y.map((c) => Math.sqrt(floor ** 2 + (relative * c) ** 2 + (counts?.(c) ?? 0)));
     return { sd, from: "declared", persistence };
   }
-  const before = n >= 8 ? (persistence.from?.sd ?? roughness(t.subarray(0, n), y.subarray(0, n))) : 0;
-  const sd = n >= 8 ? before : leastRoughness(t, y);
-  const from = n >= 8 ? "before the injection" : "roughness of the curve";
-  return { sd: new Float64Array(y.length).fill(sd), from, persistence };
+  const told = (sd: number, from: Noise["from"]): Noise => ({
+    sd: new Float64Array(y.length).fill(sd),
+    from,
+    persistence,
+  });
+  if (judged) return told(judged.sd[0], judged.from);
+  const before = n >= 8 ? roughness(t.subarray(0, n), y.subarray(0, n)) : 0;
+  if (silent.judged === "silence") return told(silent.from?.sd ?? before, "before the injection");
+  if (late && (late.time > 0 || n < 8)) return told(late.sd, "scatter along the curve");
+  if (!late)
+    return n >= 8 ? told(before, "before the injection") : told(leastRoughness(t, y), "roughness of the curve");
+  // Few silent points tell a scatter badly (its logarithm to 1 / sqrt(1.2 n)): those of the end count, too, where they scatter alike.
+  if (Math.abs(Math.log(late.sd / before)) > 3 / Math.sqrt(1.2 * n)) return told(before, "before the injection");
+  return told(Math.sqrt((n * before ** 2 + late.points * late.sd ** 2) / (n + late.points)), "before the injection");
+}
+
+/** From where the curve stays within half of its way to the end: fronts and spikes are behind. */
+function latePart(t: Float64Array, y: Float64Array, n: number, isStep: boolean): [Float64Array, Float64Array] {
+  const end = isStep && y.length > 0 ? median(y.slice(-Math.max(1, Math.floor((y.length - n) / 10)))) : 0;
+  const off = (i: number): number => (isStep ? Math.abs(y[i] - end) : y[i]);
+  let most = 0;
+  for (let i = n; i < y.length; i++) most = Math.max(most, off(i));
+  let from = y.length;
+  while (from > n && off(from - 1) <= most / 2) from--;
+  return [t.subarray(from), y.subarray(from)];
 }
 
 function leastRoughness(t: Float64Array, y: Float64Array): number {

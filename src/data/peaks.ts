@@ -8,8 +8,11 @@ export interface Peak {
   readonly area: number;
 }
 
-/** Peaks of a curve, in order of time; a running mean of five keeps single points of noise from being one. */
-export function peaksOf(time: Float64Array, value: Float64Array, sd: Float64Array): Peak[] {
+/**
+ * Peaks of a curve, in order of time; a running mean of five keeps single points of noise from being one.
+ * @param lag1 correlation of neighbouring errors: a mean of those that hang together is hardly better than one
+ */
+export function peaksOf(time: Float64Array, value: Float64Array, sd: Float64Array, lag1 = 0): Peak[] {
   const n = value.length;
   const wide = n >= 60 ? 2 : n >= 25 ? 1 : 0;
   const smooth = value.map((_, i) => {
@@ -19,7 +22,10 @@ export function peaksOf(time: Float64Array, value: Float64Array, sd: Float64Arra
     return sum / (b - a + 1);
   });
   const most = smooth.reduce((m, v) => Math.max(m, v), 0);
-  const noise = sd.map((s) => s / Math.sqrt(2 * wide + 1));
+  const among = 2 * wide + 1;
+  let together = among;
+  for (let gap = 1; gap < among; gap++) together += 2 * (among - gap) * lag1 ** gap;
+  const noise = sd.map((s) => (s * Math.sqrt(together)) / among);
   const tops: number[] = [];
   const dips: number[] = [0];
   let [up, at] = [true, 0];

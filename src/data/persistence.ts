@@ -1,14 +1,18 @@
+import type { Along } from "./along.js";
+
 /** How neighbouring errors of a log hang together. */
 export interface Persistence {
   /** Correlation of neighbours; 0 where none is told. */
   readonly lag1: number;
   /** Their spacing, s. */
   readonly spacing: number;
-  /** Points that it was taken from, and their standard deviation; undefined where there was no stretch to take it from. */
+  /** Where it was looked for; `nowhere`: no stretch was long enough, so that independence is a guess. */
+  readonly judged: "silence" | "curve" | "nowhere";
+  /** Points that it was taken from, and their standard deviation; undefined where errors are not told to hang together. */
   readonly from?: { readonly points: number; readonly sd: number };
 }
 
-export const independent: Persistence = { lag1: 0, spacing: 1 };
+const independent = (judged: Persistence["judged"]): Persistence => ({ lag1: 0, spacing: 1, judged });
 
 /** A stretch needs so many points. */
 const fewest = 30;
@@ -21,20 +25,29 @@ const fewest = 30;
  * @param count how many points lie before the injection
  */
 export function persistenceOf(t: Float64Array, y: Float64Array, count: number): Persistence {
-  if (count < fewest) return independent;
+  if (count < fewest) return independent("nowhere");
   const residual = straightened(t.subarray(0, count), y.subarray(0, count));
   const square = residual.reduce((sum, e) => sum + e * e, 0);
-  if (!(square > 0)) return independent;
+  if (!(square > 0)) return independent("silence");
   let product = 0;
   for (let i = 1; i < count; i++) product += residual[i] * residual[i - 1];
   const raw = product / square;
-  if (!(raw * Math.sqrt(count) > 2)) return independent;
+  if (!(raw * Math.sqrt(count) > 2)) return independent("silence");
   const lag1 = Math.min(0.995, raw + (2 + 4 * raw) / count);
   return {
     lag1,
+    judged: "silence",
     spacing: (t[count - 1] - t[0]) / (count - 1),
     from: { points: count, sd: Math.sqrt(square / (count - 2) / Math.max(0.2, 1 - (2 * inflation(lag1)) / count)) },
   };
+}
+
+/** The same from errors about a smooth curve. */
+export function persistenceAlong(t: Float64Array, { points, sd, time }: Along): Persistence {
+  if (!(time > 0)) return independent("curve");
+  const n = t.length;
+  const spacing = (t[n - 1] - t[n - points]) / (points - 1);
+  return { lag1: Math.min(0.995, Math.exp(-spacing / time)), judged: "curve", spacing, from: { points, sd } };
 }
 
 /** What the variance of a mean grows by where neighbours hang together: (1 + r) / (1 - r). */
@@ -48,7 +61,7 @@ export function varianceOfSum(
   g: ArrayLike<number>,
   sd: ArrayLike<number>,
   time: ArrayLike<number>,
-  { lag1, spacing }: Persistence,
+  { lag1, spacing }: Pick<Persistence, "lag1" | "spacing">,
 ): number {
   let sum = 0;
   let before = 0;

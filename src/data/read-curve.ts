@@ -15,6 +15,9 @@ export function agesOf({ time, E, F }: Distribution, error: Float64Array, mean: 
   };
 }
 
+/** Errors of F that the stretch its slope is taken over must rise by. */
+const steep = 6;
+
 /**
  * One standard error of the time at which a share has come: that of F there, over E.
  * @param error  of F at the points, by their noise
@@ -29,7 +32,11 @@ export function percentileError(
   if (at === undefined) return undefined;
   const i = F.time.findIndex((t) => t >= at);
   if (i < 1) return undefined;
-  const density = (F.E[i] + F.E[i - 1]) / 2;
   const own = Math.hypot((error[i] + error[i - 1]) / 2, unsure * F.F[i]);
+  // The slope over so much of the curve that noise does not make it.
+  let [a, b] = [i - 1, i];
+  while ((a > 0 || b + 1 < F.time.length) && F.F[b] - F.F[a] < steep * own)
+    [a, b] = [Math.max(0, a - 1), Math.min(F.time.length - 1, b + 1)];
+  const density = (F.F[b] - F.F[a]) / (F.time[b] - F.time[a]);
   return density > 0 ? own / density : undefined;
 }

@@ -13,12 +13,12 @@ export function recoveryOf(
   curve: CleanCurve,
   found: RawMoments,
   flow: Known | undefined,
-  recovered: number | undefined,
+  recovered: Figure | undefined,
   inlet: RawMoments | undefined,
   areaError: number,
   basis: Basis,
 ): Figure {
-  if (form.is === "step") return figure(recovered, one);
+  if (form.is === "step") return recovered ?? figure(undefined, one);
   if (reading.scale === "free") return figure(undefined, one);
   if (inlet) return figure(found.area / inlet.area, one, areaError / inlet.area);
   if (form.is !== "pulse" || !flow) return figure(undefined, one);

@@ -49,7 +49,7 @@ export function redrawing(trial: Trial, reading: Reading): ((draw: Random) => Re
   const begins = trial.injections[0]?.start ?? Number.NEGATIVE_INFINITY;
   const first = time.findIndex((t) => t >= begins);
   const before = first < 0 ? time.length : first;
-  const { sd, persistence, from } = noiseOf(time, y, before, reading);
+  const { sd, persistence, from } = noiseOf(time, y, before, reading, trial.injections[0]?.form.is === "step");
   // Of n points the scatter off the line between neighbours tells the noise as n / 2 independent ones do.
   const seen = from === "declared" ? 0 : Math.floor((from === "before the injection" ? before : time.length) / 2);
   const { lag1, spacing } = persistence;

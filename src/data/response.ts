@@ -1,7 +1,9 @@
 import type { Baseline } from "./baseline.js";
 import type { CleanCurve } from "./clean.js";
 import type { RawFour } from "./decay.js";
+import { type Sampling, samplingOf } from "./fronts.js";
 import { type Hidden, slowest } from "./hidden-tail.js";
+import { inflation, type Persistence } from "./persistence.js";
 import type { SlowTail } from "./slow-tail.js";
 import { type Tail, tailError, tailGradient, tailMoments, tailOf } from "./tail.js";
 import { type Rule, weights } from "./weights.js";
@@ -18,13 +20,24 @@ export interface Response {
   readonly weight: Float64Array;
   readonly tail: Tail;
   readonly hidden?: Hidden | undefined;
-  /** One standard error of the area between the injection and the first point after it; there where that was not seen. */
-  readonly front?: number;
+  /** What the samples leave open between them. */
+  readonly sampling: Sampling;
+  /** Of a step: what else moves all points of it together. */
+  readonly ends?: Ends;
+}
+
+/** What the level that a step comes from and the one that it ends at leave open. */
+export interface Ends {
+  /** So many last points make the final level: their errors are in every point, as F there. 0 where it was declared. */
+  readonly points: number;
+  /** One standard error of the final level, and of the first one, over the step. */
+  readonly last: number;
+  readonly first: number;
 }
 
 /** What a curve needs to be read: a cleaned reading has it, and a measured inlet. */
 export interface Sampled extends Pick<CleanCurve, "time" | "value" | "before"> {
-  readonly noise: { readonly sd: Float64Array };
+  readonly noise: { readonly sd: Float64Array; readonly persistence?: Pick<Persistence, "lag1"> };
   readonly baseline?: Baseline | undefined;
   /** When the injection began; where left out nothing is made of the time before the first point. */
   readonly start?: number;
@@ -41,22 +54,29 @@ export function pulseResponse(curve: Sampled, rule: Rule): Response {
   const lead = gap > 0 ? [start ?? 0, 0, 0] : undefined;
   const [time, value, sd] = lead ? seen.map((y, i) => led(lead[i], y)) : seen;
   const joint = curve.baseline?.tail;
-  const tail = joint ? jointTail(joint) : tailOf(time, value, sd);
+  const tail = joint ? jointTail(joint) : tailOf(time, value, sd, growth(curve));
+  const sampling = samplingOf(time, value, sd);
+  if (lead) {
+    sampling.smooth[0] = 0;
+    sampling.unsure[0] = (gap * Math.abs(value[1])) / Math.sqrt(12);
+  }
   return {
     is: "density",
     time,
     value,
     sd,
-    weight: weights(time, rule),
+    weight: weights(time, rule, sampling.smooth),
+    sampling,
     tail,
     // A tail that is seen to be slow beside the record hides none slower that would count.
     hidden:
       tail.is === "exponential" && tail.rate * time[time.length - 1] < slowest.alone
         ? undefined
         : curve.baseline?.hidden,
-    ...(lead ? { front: (gap * Math.abs(value[1])) / Math.sqrt(12) } : {}),
   };
 }
+
+const growth = ({ noise }: Sampled): number => inflation(noise.persistence?.lag1 ?? 0);
 
 function led(first: number, y: Float64Array): Float64Array {
   const longer = new Float64Array(y.length + 1);
@@ -82,10 +102,11 @@ const jointTail = (joint: SlowTail): Tail => ({
 export interface Levels {
   readonly from: number;
   readonly to: number;
+  readonly ends?: Ends;
 }
 
 /** The curve after a step as 1 - F, from time 0 on (where it is 1). */
-export function stepResponse(curve: Sampled, { from, to }: Levels, rule: Rule): Response {
+export function stepResponse(curve: Sampled, { from, to, ends }: Levels, rule: Rule): Response {
   const n = curve.time.length - curve.before;
   const lead = n > 0 && curve.time[curve.before] > 0 ? 1 : 0;
   const time = new Float64Array(n + lead);
@@ -96,10 +117,20 @@ export function stepResponse(curve: Sampled, { from, to }: Levels, rule: Rule): 
     value[i + lead] = curve.time[curve.before + i] < 0 ? 1 : 1 - (curve.value[curve.before + i] - from) / (to - from);
     sd[i + lead] = curve.noise.sd[curve.before + i] / Math.abs(to - from);
   }
-  return { is: "washout", time, value, sd, weight: weights(time, rule), tail: tailOf(time, value, sd) };
+  const sampling = samplingOf(time, value, sd);
+  return {
+    is: "washout",
+    time,
+    value,
+    sd,
+    weight: weights(time, rule, sampling.smooth),
+    tail: tailOf(time, value, sd, growth(curve)),
+    sampling,
+    ...(ends ? { ends } : {}),
+  };
 }
 
-/** Moments about the origin of the injection, with gradients by each point for error bars. SI. */
+/** Moments about the origin of the injection, with what moves them for error bars. SI. */
 export interface RawMoments {
   /** Integral of the curve: concentration times s for a pulse, 1 for a step. */
   readonly area: number;
@@ -107,12 +138,8 @@ export interface RawMoments {
   readonly variance: number;
   /** Third central moment, s^3. */
   readonly third: number;
-  readonly gradient: {
-    readonly area: Float64Array;
-    readonly mean: Float64Array;
-    readonly variance: Float64Array;
-    readonly third: Float64Array;
-  };
+  /** By how much each changes for one more unit of integral at a time. */
+  readonly impact: Readonly<Record<"area" | "mean" | "variance" | "third", (time: number) => number>>;
   /** What the tail leaves open of each figure. */
   readonly doubt: Readonly<Record<keyof typeof figures, TailDoubt>>;
   /** What the extrapolated tail makes of area, mean and variance: its share of each (variance: about the final mean). */
@@ -188,14 +215,14 @@ function densityMoments(response: Response): RawMoments | undefined {
   const [tail2, tail3] = aboutMean(beyond, mean);
   const variance = (s2 + tail2) / area;
   const third = (s3 + tail3) / area;
-  const by = (f: (off: number) => number): Float64Array => time.map((t, i) => (weight[i] * f(t - mean)) / area);
+  const by = (f: (off: number) => number) => (t: number) => f(t - mean) / area;
   return {
     area,
     mean,
     variance,
     third,
-    gradient: {
-      area: weight,
+    impact: {
+      area: () => 1,
       mean: by((off) => off),
       variance: by((off) => off * off - variance),
       third: by((off) => off ** 3 - 3 * variance * off - third),
@@ -232,14 +259,14 @@ function washoutMoments(response: Response): RawMoments | undefined {
   const variance = r2 - r1 * r1;
   const third = r3 - 3 * r1 * r2 + 2 * r1 ** 3;
   if (!(r1 > 0) || !(variance > 0)) return undefined;
-  const by = (f: (off: number) => number): Float64Array => time.map((t, i) => weight[i] * f(t - r1));
+  const by = (f: (off: number) => number) => (t: number) => f(t - r1);
   return {
     area: 1,
     mean: r1,
     variance,
     third,
-    gradient: {
-      area: new Float64Array(time.length),
+    impact: {
+      area: () => 0,
       mean: by(() => 1),
       variance: by((off) => 2 * off),
       third: by((off) => 3 * (off * off - variance)),

@@ -14,6 +14,8 @@ export interface MomentsOptions {
   /** Volume of the vessel, m3, and the whole flow through it, m3/s. */
   readonly volume?: Known | undefined;
   readonly throughflow?: Known | undefined;
+  /** The volume is left out because it hangs on parameters that a fit has yet to find. */
+  readonly guessed?: boolean;
   /** The unit that volumes are shown in; that of the flow where left out. */
   readonly volumeUnit?: Unit;
   /** How a place stands among the ways out of the vessel. */

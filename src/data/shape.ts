@@ -1,8 +1,6 @@
-import type { CleanCurve } from "./clean.js";
 import type { Distribution } from "./distribution.js";
 import { type Peak, peaksOf } from "./peaks.js";
-import { inflation } from "./persistence.js";
-import type { Response } from "./response.js";
+import type { Sight } from "./sight.js";
 import { thresholds as limit } from "./thresholds.js";
 
 /** A straight line through ln W. */
@@ -42,18 +40,11 @@ export interface Shape {
 }
 
 /** @returns undefined where the curve has too few points for shapes */
-export function shapeOf(
-  curve: CleanCurve,
-  response: Response,
-  F: Distribution,
-  mean: number,
-  relative: number,
-  area: number,
-): Shape | undefined {
+export function shapeOf({ curve, response, F, found, mean: own, variance, error }: Sight): Shape | undefined {
   const { time } = F;
+  const [mean, relative] = [found.mean, variance / own ** 2];
   if (time.length < 12 || !(mean > 0)) return undefined;
   const W = F.F.map((f) => 1 - f);
-  const error = washoutError(response, area, curve);
   const seen = (i: number): boolean => W[i] > limit.washoutLeast * error[i] && W[i] > 0;
   const main = lineOver(time, W, error, (i) => seen(i) && W[i] <= limit.lineFrom && W[i] >= limit.lineTo);
   const lateFrom = limit.slowFrom;
@@ -71,7 +62,7 @@ export function shapeOf(
     late: late && spanOf(time, W, error, lateFrom) >= limit.slowSpan ? late : undefined,
     mode: time[highest],
     first: F.quantile(0.005) ?? time[0],
-    peaks: response.is === "density" ? peaksOf(time, response.value, response.sd) : [],
+    peaks: response.is === "density" ? peaksOf(time, response.value, response.sd, curve.noise.persistence.lag1) : [],
     intensity: intensityOf(time, W, error),
   };
 }
@@ -88,24 +79,6 @@ function widthOf(F: Distribution, error: Float64Array): Pick<Shape, "width" | "w
     return density > 0 ? error[i] / density : Number.POSITIVE_INFINITY;
   };
   return { width: (c - a) / 2 / b, widthError: Math.hypot(late(a), late(c)) / 2 / b };
-}
-
-/** Error of what is still to come at each point, from the noise of the points after and before it. */
-export function washoutError({ is, sd, weight, value }: Response, area: number, { noise }: CleanCurve): Float64Array {
-  if (is === "washout") return sd;
-  const grow = inflation(noise.persistence.lag1);
-  const n = value.length;
-  const part = sd.map((s, i) => grow * (weight[i] * s) ** 2);
-  const total = part.reduce((sum, v) => sum + v, 0);
-  let before = 0;
-  let seen = 0;
-  return Float64Array.from({ length: n }, (_, i) => {
-    before += part[i];
-    seen += weight[i] * value[i];
-    const F = Math.min(1, Math.max(0, seen / area));
-    // The area's own error moves both sides of the point.
-    return Math.sqrt((1 - F) ** 2 * before + F ** 2 * (total - before)) / area;
-  });
 }
 
 /** Weighted least squares of ln W on t over the points chosen. Neighbouring points of W share most of their error. */

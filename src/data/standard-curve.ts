@@ -5,6 +5,7 @@ import { distributionOf } from "./distribution.js";
 import { momentErrors } from "./error.js";
 import { hopeless } from "./judge.js";
 import { basisOf, dilutionOf } from "./moments.js";
+import type { Noise } from "./noise.js";
 import { redrawing, shortened } from "./redraw.js";
 import { momentsOf, type Response } from "./response.js";
 import type { MomentsOptions } from "./result.js";
@@ -54,14 +55,14 @@ export function standardCurve(
   const own = counted(first);
   if (!own) return "half of it had left before it was read";
   const draw = random(seed);
-  const draws = Array.from({ length: limit.draws }, () => read(trial, redraw(draw), options)).flatMap(
+  const draws = Array.from({ length: limit.draws }, () => read(trial, redraw(draw), options, curve.noise)).flatMap(
     (again) => (again && counted(again)) ?? [],
   );
   // The chance of what none of them does cannot be told from fewer.
   if (draws.length < 0.9 * limit.draws) return "its noise leaves no curve";
   const root = (of: (d: (typeof draws)[number]) => number): number =>
     Math.hypot(...draws.map(of)) / Math.sqrt(draws.length);
-  const half = read(trial, everySecond(reading), options);
+  const half = read(trial, everySecond(reading), options, curve.noise);
   const coarse = half && counted(half);
   const width = Math.sqrt(Math.max(0, curve.added.variance)) / own.half;
   const doubt = ages.map((age, i) => {
@@ -89,8 +90,8 @@ interface Read {
   readonly response: Response;
 }
 
-function read(trial: Trial, reading: Reading, options: MomentsOptions): Read | undefined {
-  const curve = cleanReading(trial, shortened(trial, reading, limit.points));
+function read(trial: Trial, reading: Reading, options: MomentsOptions, noise?: Noise): Read | undefined {
+  const curve = cleanReading(trial, shortened(trial, reading, limit.points), noise);
   if (!curve || hopeless(curve)) return undefined;
   const { injections } = trial;
   const dilution = dilutionOf(injections[0].at, options);

@@ -31,8 +31,9 @@ export type Tail =
  * whole record more would add under 0.2 % to the area. Else an exponential, from a window that grows back from the last
  * points above noise as long as the slopes of its two halves agree and it stays under half the peak. Where none is seen,
  * the curve still counts as closed if its end is under 3 of its standard errors, or the record more would add under 2 %.
+ * @param grow what the variance of a mean grows by where errors hang together
  */
-export function tailOf(t: Float64Array, y: Float64Array, sd: Float64Array): Tail {
+export function tailOf(t: Float64Array, y: Float64Array, sd: Float64Array, grow = 1): Tail {
   const n = t.length;
   let peak = 0;
   let area = 0;
@@ -47,10 +48,11 @@ export function tailOf(t: Float64Array, y: Float64Array, sd: Float64Array): Tail
   const more = level * (t[n - 1] - Math.min(0, t[0]));
   // The scatter of the end itself: a sharp front makes the roughness of the whole curve look like noise.
   const end = n - Math.max(12, Math.floor(n / 5));
-  const scatter = end > peak ? Math.min(sd[n - 1], roughness(t.subarray(end), y.subarray(end))) : sd[n - 1];
+  const scatter =
+    end > peak && grow === 1 ? Math.min(sd[n - 1], roughness(t.subarray(end), y.subarray(end))) : sd[n - 1];
   if (more <= 2e-3 * area) return closedTail(t, y, peak, scatter);
   const tail = decayOf(t, y, peak, scatter, level);
-  const lost = level <= (3 * scatter) / Math.sqrt(last);
+  const lost = level <= 3 * scatter * Math.sqrt(Math.min(1, grow / last));
   return tail.is === "open" && (lost || more <= 0.02 * area) ? closedTail(t, y, peak, scatter) : tail;
 }
 

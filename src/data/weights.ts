@@ -1,12 +1,34 @@
-/** How a sampled curve is integrated. */
-export type Rule = "trapezoid" | "simpson";
+import type { Smooth } from "./smooth.js";
+import { slopeWeights } from "./smooth.js";
 
-/** Weights w with integral = sum w_i y_i over the points t (rising, any spacing; equal times are allowed). Same unit as t. */
-export function weights(t: Float64Array, rule: Rule): Float64Array {
+/** How a sampled curve is integrated. */
+export type Rule = "cubic" | "trapezoid" | "simpson";
+
+/**
+ * Weights w with integral = sum w_i y_i over the points t (rising, any spacing; equal times are allowed). Same unit as t.
+ * @param smooth the intervals over which `cubic` may bend; where left out it draws lines
+ */
+export function weights(t: Float64Array, rule: Rule, smooth?: Smooth): Float64Array {
   const w = new Float64Array(t.length);
   if (rule === "simpson" && t.length >= 3) simpson(t, w);
   else trapezoid(t, w, 0, t.length - 1);
+  if (rule === "cubic" && smooth) bend(t, w, smooth);
   return w;
+}
+
+/** What cubics with the slopes of `slopeWeights` hold beside lines: h^2 / 12 times the fall of the slope over each interval. */
+function bend(t: Float64Array, w: Float64Array, smooth: Smooth): void {
+  for (let i = 0; i + 1 < t.length; i++) {
+    if (!smooth[i]) continue;
+    const part = (t[i + 1] - t[i]) ** 2 / 12;
+    for (const [sign, at] of [
+      [1, i],
+      [-1, i + 1],
+    ])
+      slopeWeights(t, smooth, at, (k, by) => {
+        w[k] += sign * part * by;
+      });
+  }
 }
 
 function trapezoid(t: Float64Array, w: Float64Array, from: number, to: number): void {

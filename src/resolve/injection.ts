@@ -34,11 +34,19 @@ export function resolveInjection(
   return { at: at.text, where: at.at, start: start ?? clock.first, lasting: lasting?.of([]) ?? 0, form: put };
 }
 
-/** A start on the trial's clock. On a clock without dates, more than half a day after the last reading is the day before. */
+/**
+ * A start on the trial's clock. On a clock without dates, more than half a day after the last reading is the day before; so is what
+ * would be late in a log that begins within two hours after that.
+ */
 function startOf(node: Tree, clock: TrialClock, report: Report): number | undefined {
   const start = clock.time(node, report);
-  if (start === undefined || clock.last === clock.first || start <= clock.last) return start;
-  if (clock.format && !clock.format.dated && start > clock.last + 43_200) return start - 86_400;
+  if (start === undefined || clock.last === clock.first) return start;
+  const wraps = clock.format !== undefined && !clock.format.dated;
+  const before = start - 86_400;
+  const late = start > (clock.first + clock.last) / 2;
+  if (wraps && late && before < clock.first && clock.first - before < 7200) return before;
+  if (start <= clock.last) return start;
+  if (wraps && start > clock.last + 43_200) return before;
   report("start-late", node.at, { start: clock.show(start), last: clock.show(clock.last) });
   return undefined;
 }

@@ -24,11 +24,13 @@ export interface TrialClock {
   show(t: number): string;
 }
 
+const day = 86_400;
+
 /** Builds it from the tables that could be read. */
 export function trialClock(tables: readonly ResolvedTable[]): TrialClock {
   const dated = tables.filter(({ clock }) => clock?.dated);
   const earliest = Math.min(...dated.map(({ series }) => series.time[0]));
-  const origin = dated.length > 0 ? Math.floor(earliest / 86_400) * 86_400 : 0;
+  const origin = dated.length > 0 ? Math.floor(earliest / day) * day : 0;
   const originOf = (format: ClockFormat | undefined): number => (format?.dated ? origin : 0);
   const ends = tables.map(({ series, clock }) => {
     const shift = originOf(clock);
@@ -39,6 +41,9 @@ export function trialClock(tables: readonly ResolvedTable[]): TrialClock {
   const formats = tables.flatMap(({ clock }) => clock ?? []);
   const format = formats[0];
   const unit: Unit | undefined = tables[0]?.series.timeUnit;
+  // A clock without dates that has passed midnight: a time before the first row that comes again before the last is of the next day.
+  const unwrapped = (t: number, { dated }: ClockFormat): number =>
+    !dated && t < first && t + day <= last ? t + day : t;
   const show = (t: number): string => showTime(t + originOf(format), format, unit);
   return {
     format,
@@ -50,13 +55,13 @@ export function trialClock(tables: readonly ResolvedTable[]): TrialClock {
       if (node.type !== "scalar") return undefined;
       for (const f of formats) {
         const t = f.read(node.text);
-        if (t !== undefined) return t - originOf(f);
+        if (t !== undefined) return unwrapped(t - originOf(f), f);
       }
       const guess = guessClock(node.text);
       const isElapsed = /^[+-]?[\d.]+(?:[eE][+-]?\d+)?(?: \S.*)?$/.test(node.text.trim());
       if (guess !== undefined && guess !== "ambiguous" && (format !== undefined || tables.length === 0)) {
         const t = guess.read(node.text);
-        if (t !== undefined) return t - originOf(guess);
+        if (t !== undefined) return unwrapped(t - originOf(guess), guess);
       } else if (guess === undefined && isElapsed) {
         const value = resolveValue(node, dimensions.time, emptyScope, report)?.of([]);
         return value === undefined ? undefined : value + (format ? first : 0);

@@ -1,6 +1,6 @@
 import { compile } from "../compile/compile.js";
 import { evaluateNames } from "../compile/evaluate.js";
-import type { Plant } from "../compile/plant.js";
+import type { Plant, Settings } from "../compile/plant.js";
 import { plantFollowing } from "../compile/sends.js";
 import type { MomentsOptions } from "../data/moments.js";
 import type { WayOut } from "../data/result.js";
@@ -37,6 +37,7 @@ export function vesselFacts(network: Network, declared: Trial): MomentsOptions {
   const known = (value: number, share: number) => (share > 0 ? { value, sd: value * share } : { value });
   const retained = trial.tracer?.retained;
   const volume = retained ? tracerPlant(plant, { retained }).volume.total : plant.volume.total;
+  const guessed = (of: (plant: Plant) => number) => hangsOnGuess(network, { ...flows, ...constants }, of);
   const total = network.names.find((n) => n.role === "constant" && n.value.of(plant.env) === plant.volume.total);
   const volumeSd = total?.value.sd?.(plant.env) ?? 0;
   return {
@@ -46,10 +47,29 @@ export function vesselFacts(network: Network, declared: Trial): MomentsOptions {
       const flow = outlet?.flow ?? (node === undefined ? undefined : plant.nodes[node].inflow);
       return flow === undefined ? undefined : known(flow, relative);
     },
-    throughflow: known(throughflow, relative),
-    volume: known(volume, volumeSd / plant.volume.total),
+    throughflow: guessed((p) => p.feeds.reduce((sum, f) => sum + f.flow, 0)) ? undefined : known(throughflow, relative),
+    ...(guessed((p) => p.volume.total) ? { guessed: true } : { volume: known(volume, volumeSd / plant.volume.total) }),
     ...placesOf(plantFollowing(plant, trial.tracer?.follows?.of)),
   };
+}
+
+/**
+ * Does a figure of the vessel hang on a parameter that a fit may move and of which nothing is known but where to begin? Such a
+ * figure is no fact. A parameter with a `±` is one.
+ */
+export function hangsOnGuess(network: Network, settings: Settings, of: (plant: Plant) => number): boolean {
+  const { plant } = compile(network, settings);
+  if (!plant) return false;
+  const value = of(plant);
+  return network.names.some(({ name, slot, role, between, value: declared }) => {
+    if (role !== "parameter" || !between || settings[name] !== undefined || declared.sd) return false;
+    const here = plant.env[slot];
+    // Not all of the way: other rules of the vessel may forbid its ends.
+    return between.some((end) => {
+      const other = compile(network, { ...settings, [name]: here + 0.01 * (end.of(plant.env) - here) }).plant;
+      return other !== undefined && Math.abs(of(other) - value) > 1e-9 * Math.abs(value);
+    });
+  });
 }
 
 /** Feeds, ways out and the unit of volumes of a plant, for moments. */

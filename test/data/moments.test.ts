@@ -93,8 +93,8 @@ describe("declared cleaning", () => {
     });
     same(r, 6);
     expect(r.steps.map((s) => s.name)).toEqual(["raw", "time zero", "line delay", "front and tail"]);
-    expect(r.steps[0].mean).toBeCloseTo((clean.mean.value ?? 0) + 7.5 * min, 6);
-    expect(r.steps[1].mean).toBeCloseTo((clean.mean.value ?? 0) + 0.5 * min, 6);
+    expect(r.steps[0].mean).toBeCloseTo((clean.steps[0].mean ?? 0) + 7.5 * min, 6);
+    expect(r.steps[1].mean).toBeCloseTo((clean.steps[0].mean ?? 0) + 0.5 * min, 6);
   });
 
   test("clock times: the same curve", () => {
