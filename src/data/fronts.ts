@@ -25,14 +25,18 @@ export function samplingOf(t: Float64Array, y: Float64Array, sd: Float64Array): 
   const smooth = new Uint8Array(n).fill(1);
   const unsure = new Float64Array(n);
   const [low, high] = extent(y);
-  const rate = (i: number): number => (t[i + 1] > t[i] ? (y[i + 1] - y[i]) / (t[i + 1] - t[i]) : 0);
+  // Of an interval beside: its slope the same way as the rise, over h; 0 where there is none.
+  const along = (k: number, rise: number, h: number): number => {
+    const own = k >= 0 && k < n ? t[k + 1] - t[k] : 0;
+    return own > 0 ? (Math.sign(rise) * (y[k + 1] - y[k]) * h) / own : 0;
+  };
+  const width = (k: number): number =>
+    k >= 0 && k < n && t[k + 1] > t[k] ? t[k + 1] - t[k] : Number.POSITIVE_INFINITY;
   for (let i = 0; i < n; i++) {
     const h = t[i + 1] - t[i];
     const rise = y[i + 1] - y[i];
-    const beside = [i - 1, i + 1].filter((k) => k >= 0 && k < n && t[k + 1] > t[k]);
-    const least = beside.reduce((m, k) => Math.min(m, t[k + 1] - t[k]), Number.POSITIVE_INFINITY);
-    if (!(h > 0) || h > wide * least) smooth[i] = 0;
-    const expected = beside.reduce((m, k) => Math.max(m, Math.sign(rise) * rate(k) * h), 0);
+    if (!(h > 0) || h > wide * Math.min(width(i - 1), width(i + 1))) smooth[i] = 0;
+    const expected = Math.max(0, along(i - 1, rise, h), along(i + 1, rise, h));
     const jump = Math.max(0, Math.abs(rise) - expected);
     const noise = Math.hypot(sd[i], sd[i + 1]);
     // What noisy points jump by themselves is in their own errors already.

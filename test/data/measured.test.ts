@@ -47,6 +47,7 @@ test("findings: how often they are told where they are true, and where they are 
 Curves with known truth: ${vessels.length} vessels of 100 L at 1 L/min, a pulse read every 2 min for nine mean times with white noise of a share of the
 peak, ${draws} draws each (test/data/measured.test.ts, seed 97; thresholds version ${thresholds.version}). Cells: of 100 curves, in how many the finding is told; bold where it
 is true of the vessel. Over all: told where true ${mean(rates.hit).toFixed(0)} of 100, told where not true ${mean(rates.alarm).toFixed(1)} of 100.
+White noise and pulses only: logs whose errors hang together, and steps, are held by test/data/errors-hold.test.ts.
 
 | vessel | noise | ${codes.join(" | ")} |
 |---|---|${codes.map(() => "--:").join("|")}|
