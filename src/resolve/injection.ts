@@ -44,7 +44,7 @@ function startOf(node: Tree, clock: TrialClock, report: Report): number | undefi
   const wraps = clock.format !== undefined && !clock.format.dated;
   const before = start - 86_400;
   const late = start > (clock.first + clock.last) / 2;
-  if (wraps && late && before < clock.first && clock.first - before < 7200) return before;
+  if (wraps && late && before >= 0 && before < clock.first && clock.first - before < 7200) return before;
   if (start <= clock.last) return start;
   if (wraps && start > clock.last + 43_200) return before;
   report("start-late", node.at, { start: clock.show(start), last: clock.show(clock.last) });
