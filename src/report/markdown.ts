@@ -8,7 +8,7 @@ export function writeSummary(report: StudyReport): string {
   const { provenance: p } = report;
   const parts = [
     `# ${inline(report.title)}`,
-    report.answer.map(({ about, says }) => `- **${inline(about)}**: ${inline(says)}`).join("\n"),
+    answered(report),
     table(
       "What it makes",
       ["duty", "quantity", "value (95 %)"],
@@ -42,10 +42,7 @@ export function writeSummary(report: StudyReport): string {
       ["network", "weight", "why"],
       report.rivals.map((r) => [r.network, chance(r.weight), r.verdict]),
     ),
-    report.data.length === 0
-      ? ""
-      : `Grades of the tests: ${report.data.map((d) => `${inline(d.trial)}, at ${inline(d.at)}: ${inline(d.grade)}`).join("; ")}.`,
-    bullets("Findings", firstFindings(report)),
+    bullets("Findings", [...grades(report), ...firstFindings(report)]),
     bullets(
       "Cautions",
       cautionsFor(report.cautions).map((c) => `${c.about}: ${c.says}`),
@@ -54,6 +51,18 @@ export function writeSummary(report: StudyReport): string {
   ];
   return `${parts.filter((part) => part !== "").join("\n\n")}\n`;
 }
+
+/** The answer, a line for each thing that it is about. */
+function answered({ answer }: StudyReport): string {
+  const lines = [...new Set(answer.map((a) => a.about))].map((about) => {
+    const says = answer.filter((a) => a.about === about).map((a) => a.says);
+    return `- **${inline(about)}**: ${inline(says.join(" "))}`;
+  });
+  return lines.join("\n");
+}
+
+const grades = ({ data }: StudyReport): string[] =>
+  data.length === 0 ? [] : [`grades of the tests: ${data.map((d) => `${d.trial}, at ${d.at}: ${d.grade}`).join("; ")}`];
 
 /** As many findings as leave room on the page; all of them, and what the data do not support, are in the report. */
 const mostFindings = 5;

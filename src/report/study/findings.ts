@@ -12,7 +12,7 @@ export function findingsOf(result: StudyResult): ReportFinding[] {
   const fromData = fromTests(result, (code) => shapeCodes.has(code));
   const best = result.ranking[0];
   const fromFit = (best?.fit?.findings ?? []).map(
-    (f): ReportFinding => ({ message: f.message, evidence: evidenceWords(f.evidence), next: f.fix }),
+    (f): ReportFinding => ({ message: f.message, evidence: `the fit of '${best?.rival.network.title}'`, next: f.fix }),
   );
   const traits = best?.plant && best.fit && !best.fit.stopped ? traitsOf(best.plant, best.fit) : [];
   const fromTraits = traits.map(
@@ -74,8 +74,3 @@ function fromTests({ readings }: StudyResult, wanted: (code: string) => boolean)
       : { message: f.message, evidence: all.map((x) => `${x.where}: ${x.f.evidence}`).join("; "), couldBe, next };
   });
 }
-
-const evidenceWords = (evidence: Readonly<Record<string, number | string>>): string =>
-  Object.entries(evidence)
-    .map(([name, value]) => `${name} ${typeof value === "number" ? Number(value.toPrecision(3)) : value}`)
-    .join(", ");
