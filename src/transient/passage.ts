@@ -81,5 +81,14 @@ export function backAt(look: Look, size: number, component: number, until: numbe
   );
   const height = seen.reduce((most, [, away]) => Math.max(most, away), 0);
   if (!(height > 1e-6 * Math.abs(before))) return 0;
-  return seen.findLast(([, away]) => away > 0.01 * height)?.[0] ?? 0;
+  const late = seen.findLastIndex(([, away]) => away > 0.01 * height);
+  // Where it passes lies between two samples, which may be far from each other.
+  let [low, high] = [seen[late][0], seen[Math.min(late + 1, seen.length - 1)][0]];
+  for (let i = 0; i < 60 && high - low > 1e-12 * high; i++) {
+    const middle = (low + high) / 2;
+    look.at(middle, row, 1);
+    if (Math.abs(row[component] - before) > 0.01 * height) low = middle;
+    else high = middle;
+  }
+  return high;
 }
