@@ -10,12 +10,14 @@ import type { Transient } from "./transient.js";
 /** A figure of a transient; of one over a limit, also when, and what left meanwhile. */
 export interface TransientFigure extends Figure {
   readonly beyond?: Beyond;
-  /** Of a share of what is fed, in a run that is fed otherwise meanwhile: its ends among the run's times (s), each of what is fed then. */
+  /** Of what relates to what is fed, in a run that is fed otherwise meanwhile: its ends among the run's times (s), each of what is fed then. */
   readonly range?: { readonly lowest: Extreme; readonly highest: Extreme };
 }
 
 interface Extreme {
   readonly value: number;
+  /** Set where a removal is infinite. */
+  readonly why: Figure["why"];
   readonly at: number;
 }
 
@@ -49,15 +51,16 @@ export function transientFigures(
       return { name: line.text, value: Number.NaN, why: "undefined", unit: one };
     }
     const at = (t: number): Figure => speciesFigure(duty, run.species, line, streamsAt(plant, run, line, t), settings);
-    const isShare = line.what === "conversion" || line.what === "yield" || line.what === "selectivity";
+    const isShare = line.what !== "concentration";
     return { ...at(end), ...(isShare && changes(duty) && plant.feeds.length > 0 ? rangeOf(run.times, at) : {}) };
   });
 }
 
 function rangeOf(times: ArrayLike<number>, figure: (t: number) => Figure): Pick<TransientFigure, "range"> {
-  const seen = Array.from(times, (at): Extreme => ({ at, value: figure(at).value })).filter((e) =>
-    Number.isFinite(e.value),
-  );
+  const seen = Array.from(times, (t): Extreme => {
+    const { value, why } = figure(t);
+    return { at: t, value, why };
+  }).filter((e) => !Number.isNaN(e.value));
   if (seen.length === 0) return {};
   const lowest = seen.reduce((least, e) => (e.value < least.value ? e : least));
   const highest = seen.reduce((most, e) => (e.value > most.value ? e : most));

@@ -94,6 +94,35 @@ describe("check", () => {
     `);
   });
 
+  test("of a duty that changes in time it says what goes where, and when", async () => {
+    const duty = `duty: A day
+format: 1
+flows: {raw: {from: 3 L/min, to: 6 L/min ± 5 %, start: 10 min, lasting: 1 h}, dye: {file: pump.csv, time: {column: t, unit: h}, value: {column: Q, unit: L/min}}}
+chemistry: c.yaml
+heat: adiabatic
+feeds:
+  raw: {A: {from: 1 mol/L, to: 2 mol/L, start: 90 s}, temperature: {from: 20 degC, to: 35 degC, lasting: 2 min}}
+  dye: {A: 0 mol/L, temperature: 20 degC}
+`;
+    const chemistry =
+      "chemistry: Decay\nformat: 1\nspecies: {A: {}}\nconstants: {k: 0.1 1/min}\nreactions: [{makes: {A: -1}, rate: k * A, heat: -1 kJ/mol}]\nmedium: {heat-capacity: 4 kJ/L/K}\n";
+    const { out } = await backmix(["check", "day.yaml"], {
+      files: { "day.yaml": duty, "c.yaml": chemistry, "pump.csv": "t,Q\n0,0.5\n1,0.7\n2,0.6\n" },
+    });
+    expect(out).toMatchInlineSnapshot(`
+      "day.yaml: duty, ok
+
+        chemistry   Decay
+        flow        raw 3 L/min (6 L/min ± 5 % from 10 min to 70 min)
+        flow        dye 0.5 L/min (logged, 3 rows to 0.6 L/min at 120 min)
+        fed by raw  A 1 mol/L (2 mol/L from 1.5 min on), at 20 degC (35 degC from 0 min to 2 min)
+        fed by dye  A 0 mol/L, at 20 degC
+        heat        adiabatic
+        reported    nothing but the outlets
+      "
+    `);
+  });
+
   test("of a closed vessel without streams there is no empty table", async () => {
     const flask = "network: Flask\nformat: 1\ncompartments: {flask: {kind: stirred, volume: 1 L}}\n";
     const { out } = await backmix(["check", "flask.yaml"], { files: { "flask.yaml": flask } });

@@ -167,6 +167,25 @@ describe("a duty in time", () => {
     });
   });
 
+  test("a flow that surges and comes back: how far a kill and a conversion went meanwhile, by closed form", () => {
+    const { plant, duty } = read(
+      tank,
+      "feeds: {feed: {A: 1 mol/L}}\nflows: {feed: {from: 10 L/min, to: 30 L/min, start: 5 min, lasting: 20 min}}\nreport: [log-removal of A, conversion of A]",
+    );
+    const times = minutes(...Array.from({ length: 121 }, (_, k) => 5 * k));
+    const run = transient(plant, duty.chemistry, duty, times, { at: [] });
+    const [kill, conversion] = transientFigures(plant, duty, run);
+    // c' = D (1 - c) - 0.02 c in minutes; D = 0.02, from 5 to 25 min 0.06: highest at 25 min, where the surge ends.
+    const peak = 0.75 - 0.25 * Math.exp(-0.08 * 20);
+    expect(kill.value).toBeCloseTo(Math.log10(2), 6);
+    expect(kill.range?.lowest.value).toBeCloseTo(-Math.log10(peak), 8);
+    expect(kill.range?.lowest.at).toBe(25 * 60);
+    expect(kill.range?.highest.value).toBeCloseTo(Math.log10(2), 8);
+    expect(conversion.range?.lowest.value).toBeCloseTo(1 - peak, 8);
+    const text = transientText(plant, duty, run, [kill, conversion], clockFrom({ until: "600 min" }, plant.network.units.time, () => 36_000), []);
+    expect(text).toMatch(/log-removal of A +0\.301 +lowest 0\.155 at 25 min, highest 0\.301 at/);
+  });
+
   test("a closed vessel says what is in it", () => {
     const flask = "network: A flask\nformat: 1\ncompartments: {flask: {kind: stirred, volume: 1 L}}\n";
     expect(read(flask, "temperature: 25 degC").codes).toEqual(["contents-missing"]);

@@ -17,11 +17,12 @@ reactions: [{equation: A -> P, rate: k * A, heat: -80 kJ/mol}]
 medium: {heat-capacity: 4 kJ/L/K}
 `;
 
-function read(network: string, duty: string) {
+/** @param log what a table that the duty names holds */
+function read(network: string, duty: string, log = "") {
   const net = parseNetwork(`network: A vessel\nformat: 1\n${network}`, { path: "n.yaml" });
   const found = parseDuty(`duty: A duty\nformat: 1\nchemistry: c.yaml\n${duty}`, {
     path: "d.yaml",
-    read: () => chemistry,
+    read: (path) => (path.endsWith(".csv") ? log : chemistry),
   });
   expect([...net.problems, ...found.problems]).toEqual([]);
   if (!net.document || !found.document) throw new Error("unread");
@@ -102,6 +103,74 @@ describe("heat in time", () => {
     );
     const run = transient(plant, duty.chemistry, duty, minutes(0, 60));
     expect(transientFigures(plant, duty, run).map((f) => f.value)).toEqual([3600, 0]);
+  });
+
+  describe("a feed whose temperature changes in time, nothing reacts", () => {
+    const jump = "{from: 300 K, to: 320 K, start: 5 min}";
+    const vessel = (body: string) =>
+      `feeds: {feed: {flow: 10 L/min, to: body}}\ncompartments: {body: ${body}}\noutlets: [product]\n`;
+    const tank = vessel("{kind: stirred, volume: 100 L, to: product}");
+    const tube = vessel("{kind: tubular, volume: 100 L, to: product}");
+    const log = "minutes,T\n0,300\n10,330\n15,330\n25,310\n";
+    const logged = "{file: log.csv, time: {column: minutes, unit: min}, value: {column: T, unit: K}}";
+    const at = [0, 2, 5, 6, 9, 12, 15, 16, 20, 25, 30, 60];
+
+    function follow(network: string, temperature: string) {
+      const { plant, duty } = read(network, `feeds: {feed: {temperature: ${temperature}}}\nheat: adiabatic`, log);
+      const run = transient(plant, duty.chemistry, duty, minutes(...at));
+      expect(run.start).toBe("steady");
+      expect(Math.abs(run.balance?.heat ?? 1)).toBeLessThan(1e-9);
+      return Array.from(run.outlets[0].temperatures ?? []);
+    }
+
+    test("a tank after a jump: T = T1 + dT (1 - exp(-t/tau))", () => {
+      const found = follow(tank, jump);
+      at.forEach((t, k) => {
+        expect(found[k]).toBeCloseTo(t < 5 ? 300 : 300 + 20 * (1 - Math.exp(-(t - 5) / 10)), 6);
+      });
+    });
+
+    test("a tube: the jump comes a space time later, as a jump", () => {
+      // At 15 min itself, what is after it.
+      expect(follow(tube, jump)).toEqual(at.map((t) => expect.closeTo(t < 15 ? 300 : 320, 8)));
+    });
+
+    /** K by the log, straight between its rows. */
+    const fed = (t: number): number => {
+      if (t <= 10) return 300 + 3 * Math.max(t, 0);
+      return t <= 15 ? 330 : 330 - 2 * (Math.min(t, 25) - 15);
+    };
+
+    test("a tube by a log: the log a space time later", () => {
+      expect(follow(tube, logged)).toEqual(at.map((t) => expect.closeTo(fed(t - 10), 7)));
+    });
+
+    test("a tank by a log: of a ramp, what is fed less slope times tau, and what is off by exp(-t/tau)", () => {
+      // Within a row of constant slope s: T = fed - s tau + (T0 - fed0 + s tau) exp(-(t - t0)/tau).
+      const rows = [
+        [0, 3],
+        [10, 0],
+        [15, -2],
+        [25, 0],
+      ];
+      const step = (k: number, t: number, T0: number): number => {
+        const [from, s] = rows[k];
+        return fed(t) - 10 * s + (T0 - fed(from) + 10 * s) * Math.exp(-(t - from) / 10);
+      };
+      const expected = (t: number): number => {
+        let T = 300;
+        for (let k = 0; k < rows.length; k++) {
+          const end = rows[k + 1]?.[0] ?? Number.POSITIVE_INFINITY;
+          if (t <= end) return step(k, t, T);
+          T = step(k, end, T);
+        }
+        return T;
+      };
+      const found = follow(tank, logged);
+      at.forEach((t, k) => {
+        expect(found[k]).toBeCloseTo(expected(t), 6);
+      });
+    });
   });
 
   test("an exchanger beside a flow that changes is refused with its place: what it passes hangs on the flow", () => {

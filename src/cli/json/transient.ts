@@ -54,8 +54,8 @@ export function transientJson(
         ...reportedJson(f.beyond ? { ...f, unit: clock.unit } : f),
         ...(f.range
           ? {
-              lowest: { value: finite(f.range.lowest.value), at: quantity(f.range.lowest.at, clock.unit) },
-              highest: { value: finite(f.range.highest.value), at: quantity(f.range.highest.at, clock.unit) },
+              lowest: extremeJson(f.range.lowest, clock.unit),
+              highest: extremeJson(f.range.highest, clock.unit),
             }
           : {}),
         ...(f.beyond
@@ -117,3 +117,10 @@ export function transientJson(
       : {}),
   };
 }
+
+/** Where a removal is infinite, there is no number. */
+const extremeJson = ({ value, why, at }: NonNullable<TransientFigure["range"]>["lowest"], unit: Unit) => ({
+  value: finite(value),
+  ...(why ? { why } : {}),
+  at: quantity(at, unit),
+});

@@ -123,7 +123,7 @@ function amountText({ network }: Plant, concentration: Dimension, amount: number
 function rangeText({ range, ...figure }: TransientFigure, { unit }: Clock): string {
   if (!range) return "";
   const at = (end: "lowest" | "highest"): string =>
-    `${end} ${reportedText({ ...figure, value: range[end].value })} at ${formatQuantity(range[end].at, unit)}`;
+    `${end} ${reportedText({ ...figure, value: range[end].value, why: range[end].why })} at ${formatQuantity(range[end].at, unit)}`;
   return `${at("lowest")}, ${at("highest")}`;
 }
 

@@ -1,5 +1,5 @@
 import type { Chemistry } from "../../model/chemistry.js";
-import type { Duty } from "../../model/duty.js";
+import type { Duty, FeedCourse } from "../../model/duty.js";
 import type { ChangeDocument, Study } from "../../model/study.js";
 import { type Injection, type Reading, readingLabel, type Trial } from "../../model/trial.js";
 import type { Value } from "../../model/value.js";
@@ -119,11 +119,11 @@ function dutyText(duty: Duty): string {
   const { heat } = duty;
   return pairs([
     ["chemistry", duty.chemistry?.title ?? "none: mixing alone"],
-    ...named("flow", placed(duty.flows)),
+    ...[...duty.flows].map(([feed, f]): Row => ["flow", `${feed} ${inTime(f.value, duty.flowCourses?.get(feed))}`]),
     ...[...duty.feeds].map(([feed, f]): Row => {
-      const warm = f.temperature ? `, at ${written(f.temperature)}` : "";
-      const moving = f.courses && f.courses.size > 0 ? `; changes in time: ${[...f.courses.keys()].join(", ")}` : "";
-      return [`fed by ${feed}`, (speciesWords(f.species) || "nothing that reacts") + warm + moving];
+      const warm = f.temperature ? `, at ${inTime(f.temperature, f.courses?.get("temperature"))}` : "";
+      const brings = [...f.species].map(([name, p]) => `${name} ${inTime(p.value, f.courses?.get(name))}`).join(", ");
+      return [`fed by ${feed}`, (brings || "nothing that reacts") + warm];
     }),
     ...named("with", placed(new Map([...duty.with, ...duty.settings]))),
     ...[...(duty.local ?? [])].map(
@@ -209,6 +209,21 @@ const placed = (values: ReadonlyMap<string, { readonly value: Value }>): Readonl
 
 const speciesWords = (species: ReadonlyMap<string, { readonly value: Value }>): string =>
   [...species].map(([name, p]) => `${name} ${written(p.value)}`).join(", ");
+
+/** A value of a feed, and in brackets what it goes to. */
+function inTime(before: Value, course: FeedCourse | undefined): string {
+  if (!course) return written(before);
+  const time = (s: number): string => formatQuantity(s, minute);
+  if (course.is === "upset") {
+    const { start, lasting, to } = course;
+    const until = lasting === undefined ? " on" : ` to ${time(start + lasting)}`;
+    return `${written(before)} (${written(to)} from ${time(start)}${until})`;
+  }
+  const { times, values } = course;
+  const say = (x: number): string => (before.unit ? formatQuantity(x, before.unit) : String(x));
+  const last = times.length - 1;
+  return `${say(values[0])} (logged, ${times.length} rows to ${say(values[last])} at ${time(times[last])})`;
+}
 
 const firstTimeUnit = (trial: Trial) => trial.readings.find((r) => r.series)?.series?.timeUnit;
 
