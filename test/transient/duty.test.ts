@@ -182,8 +182,15 @@ describe("a duty in time", () => {
     expect(kill.range?.lowest.at).toBe(25 * 60);
     expect(kill.range?.highest.value).toBeCloseTo(Math.log10(2), 8);
     expect(conversion.range?.lowest.value).toBeCloseTo(1 - peak, 8);
-    const text = transientText(plant, duty, run, [kill, conversion], clockFrom({ until: "600 min" }, plant.network.units.time, () => 36_000), []);
-    expect(text).toMatch(/log-removal of A +0\.301 +lowest 0\.155 at 25 min, highest 0\.301 at/);
+    const text = transientText(
+      plant,
+      duty,
+      run,
+      [kill, conversion],
+      clockFrom({ until: "600 min" }, plant.network.units.time, () => 36_000),
+      [],
+    );
+    expect(text).toMatch(/log-removal of A +0\.301 +lowest 0\.1552 at 25 min, highest 0\.301 at 0 min/);
   });
 
   test("a closed vessel says what is in it", () => {
