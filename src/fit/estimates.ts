@@ -1,4 +1,5 @@
 import { studentTQuantile } from "../numerics/distributions.js";
+import { linearInterpolant } from "../numerics/interpolation.js";
 import { type Autocorrelation, autocorrelationOf } from "./autocorrelation.js";
 import { orthonormalBasis } from "./basis.js";
 import { type LinearTheory, linearTheory } from "./covariance.js";
@@ -64,7 +65,7 @@ export function estimatesOf(settled: Settled, stands = settled.problem): Estimat
   const freedom = freedomOf(problem);
   const variance = freedom > 0 ? at.ofAll / freedom : Number.NaN;
   // What a calibration leaves open bends whole curves: it is carried by itself, and is no reason to call readings correlated.
-  const shifts = calibrationShifts(problem);
+  const shifts = calibrationShifts(settled);
   const wider = orthonormalBasis(shifts, basis);
   const autocorrelation = autocorrelationOf(setup.blocks, at.residuals, {
     count: wider.length,
@@ -177,16 +178,29 @@ function nuisanceOf(
   return { nuisance, names };
 }
 
-/** Weighted change of the measurements for one standard deviation of each thing that a calibration leaves open, with rows for priors. */
-function calibrationShifts({ setup, weight, priors, projectors }: Settled["problem"]): Float64Array[] {
-  return setup.blocks.flatMap((b, k) =>
-    b.doubts.map((doubt) => {
+/**
+ * Weighted change of the measurements for one standard deviation of each thing that a calibration leaves open, with rows for priors.
+ * It is that of the fitted values: the change of what was measured holds the noise itself, and would explain all of it.
+ */
+function calibrationShifts({ problem: { setup, weight, priors, projectors }, at }: Settled): Float64Array[] {
+  return setup.blocks.flatMap((b, k) => {
+    const order = Int32Array.from(b.measured.keys()).sort((i, j) => b.measured[i] - b.measured[j]);
+    const measured = Float64Array.from(order, (i) => b.measured[i]);
+    return b.doubts.map((doubt) => {
+      const ofMeasured = linearInterpolant(
+        measured,
+        Float64Array.from(order, (i) => doubt[i]),
+      );
       const shift = new Float64Array(setup.observations + priors.length);
-      for (let i = 0; i < doubt.length; i++) shift[b.from + i] = doubt[i] * weight[b.from + i];
+      for (let i = 0; i < doubt.length; i++) {
+        const w = weight[b.from + i];
+        const fitted = w > 0 ? b.measured[i] - at.residuals[b.from + i] / w : b.measured[i];
+        shift[b.from + i] = ofMeasured(fitted) * w;
+      }
       projectors[k].apart(shift);
       return shift;
-    }),
-  );
+    });
+  });
 }
 
 /** Length of the weighted measurements. */

@@ -60,13 +60,17 @@ function straight(node: Tree, raw: Unit | undefined, report: Report): Calibratio
   }
   if (!right) return "faulty";
   const [zero, up, by] = [blank?.of([]) ?? 0, rise.of([]), per.of([])];
+  const [ofZero, ofUp, ofBy] = [blank, rise, per].map((v) => v?.sd?.([]) ?? 0);
   return {
     perUnit: per.unit,
     rawUnit: signal ?? one,
     concentration: (y) => ((y - zero) / up) * by,
     raw: (c) => zero + (c / by) * up,
     slope: () => by / up,
-    doubts: () => [],
+    doubts: (y) => {
+      const c = ((y - zero) / up) * by;
+      return [(-by / up) * ofZero, (-c / up) * ofUp, (c / by) * ofBy];
+    },
   };
 }
 

@@ -4,6 +4,7 @@ import type { Report } from "../problems/report.js";
 import type { Files } from "../read/files.js";
 import { child, type MapNode, type Tree } from "../read/tree.js";
 import { dimensions } from "../units/dimension.js";
+import { certain } from "./certain.js";
 import { resolveDetectorValue } from "./detector.js";
 import { resolveInlet } from "./inlet.js";
 import { aboveZero } from "./sign.js";
@@ -27,6 +28,7 @@ export function resolveInjection(
   const form = resolveForm(node, table, given, clock, anyWord, files, report);
   const lasting = resolveValue(child(node, "lasting"), dimensions.time, emptyScope, report);
   aboveZero("the time that an injection takes", lasting, true, report);
+  certain("the time that an injection takes", lasting, report);
   const first = form?.is === "signal" ? form.table.time[0] : clock.format ? clock.first : 0;
   const start = written ? given : first;
   if (at?.type !== "scalar") return undefined;
@@ -75,6 +77,7 @@ function resolveForm(
   const fromNode = child(written, "from");
   const from = resolveDetectorValue(fromNode, anyWord, report);
   if (!level || (fromNode && !from)) return undefined;
+  certain("the level before a step", from, report);
   const levels: readonly [string, Value | undefined][] = [
     ["the level of a step", level],
     ["the level before a step", from],

@@ -6,6 +6,7 @@ import { dimensions, sameDimension } from "../units/dimension.js";
 import { formatQuantity } from "../units/format.js";
 import { one, type Unit } from "../units/unit.js";
 import { resolveCalibration, sameSignal } from "./calibration.js";
+import { certain } from "./certain.js";
 import { resolveDetectorValue } from "./detector.js";
 import { resolvePlaces } from "./places.js";
 import { aboveZero } from "./sign.js";
@@ -160,6 +161,8 @@ function resolveNoise(
   if ((floorNode && !written) || (relativeNode && !relative) || counting === "faulty") return "faulty";
   if (!aboveZero("the floor of the noise", written, true, report)) return "faulty";
   if (!aboveZero("the relative noise", relative, true, report)) return "faulty";
+  certain("the floor of the noise", written, report);
+  certain("the relative noise", relative, report);
   let floor = written;
   if (written && !sameDimension(written.dimension, unit.dimension)) {
     if (!calibration || !sameSignal(written, calibration.rawUnit)) {

@@ -6,6 +6,7 @@ import { dimensions, over, sameDimension } from "../units/dimension.js";
 import { formatQuantity } from "../units/format.js";
 import type { Unit } from "../units/unit.js";
 import { sameSignal } from "./calibration.js";
+import { certain } from "./certain.js";
 import { resolveDetectorValue } from "./detector.js";
 import { aboveZero } from "./sign.js";
 import { emptyScope, resolveTemperature, resolveValue } from "./value.js";
@@ -86,6 +87,8 @@ function temperatureFactor(
   const to = resolveTemperature(child(node, "to"), emptyScope, report);
   const by = resolveValue(child(node, "by"), perKelvin, emptyScope, report);
   if (!to || !by) return undefined;
+  certain("the temperature that a calibration is for", to, report);
+  certain("the effect of temperature on a reading", by, report);
   const [zero, share] = [to.of([]), by.of([])];
   const factor = temperature.map((t) => 1 + share * (t - zero));
   const wrong = factor.findIndex((f) => !(f > 0));
@@ -106,6 +109,8 @@ export function resolveCounting(
   if (!time || (child(node, "dead-time") && !dead)) return "faulty";
   if (!aboveZero("the time that a reading counts", time, false, report)) return "faulty";
   if (!aboveZero("the dead time of a counter", dead, true, report)) return "faulty";
+  certain("the time that a reading counts", time, report);
+  certain("the dead time of a counter", dead, report);
   if (raw && !sameDimension(raw.dimension, over(dimensions.signal, dimensions.time))) {
     report("reading-unit", node.at, { what: "`counting`", unit: "counts per time, such as cps", reading: raw.name });
     return "faulty";
@@ -141,6 +146,7 @@ export function resolveLimits(
     const value = resolveDetectorValue(written, true, report);
     const level = value && asConcentration(`\`${key}\``, value, unit, calibration, report);
     if (level === undefined || !value) return "faulty";
+    certain(`the limit \`${key}\``, value, report);
     if (Number.isNaN(level)) {
       report("limit-unread", value.at, { limit: formatQuantity(value.of([]), value.unit ?? unit) });
       return "faulty";

@@ -2,6 +2,7 @@ import type { Retained, Tracer } from "../model/trial.js";
 import type { Report } from "../problems/report.js";
 import { child, entriesOf, type Tree } from "../read/tree.js";
 import { dimensions } from "../units/dimension.js";
+import { certain } from "./certain.js";
 import { aboveZero } from "./sign.js";
 import { emptyScope, resolveValue } from "./value.js";
 
@@ -12,6 +13,8 @@ export function resolveTracer(node: Tree | undefined, report: Report): Tracer | 
   const loss = resolveValue(child(node, "loss"), dimensions.frequency, emptyScope, report);
   aboveZero("the half-life of a tracer", halfLife, false, report);
   aboveZero("the loss of a tracer", loss, true, report);
+  certain("the half-life of a tracer", halfLife, report);
+  certain("the loss of a tracer", loss, report);
   const retained = entriesOf(child(node, "retained")).map(({ key, value }) => resolveRetained(key, value, report));
   const follows = child(node, "follows");
   return {
@@ -33,5 +36,6 @@ function resolveRetained(
     return { ...body, factor: { name: value.text.trim(), at: value.at } };
   const factor = resolveValue(value, dimensions.ratio, emptyScope, report);
   aboveZero("a retention", factor, false, report);
+  certain(`the retention in '${key.text}'`, factor, report, true);
   return { ...body, factor: factor?.of([]) ?? Number.NaN };
 }

@@ -4,6 +4,7 @@ import { showTime } from "../read/series.js";
 import type { Tree } from "../read/tree.js";
 import { dimensions } from "../units/dimension.js";
 import type { Unit } from "../units/unit.js";
+import { certain } from "./certain.js";
 import type { ResolvedTable } from "./trial-table.js";
 import { emptyScope, resolveValue } from "./value.js";
 
@@ -63,8 +64,9 @@ export function trialClock(tables: readonly ResolvedTable[]): TrialClock {
         const t = guess.read(node.text);
         if (t !== undefined) return unwrapped(t - originOf(guess), guess);
       } else if (guess === undefined && isElapsed) {
-        const value = resolveValue(node, dimensions.time, emptyScope, report)?.of([]);
-        return value === undefined ? undefined : value + (format ? first : 0);
+        const value = resolveValue(node, dimensions.time, emptyScope, report);
+        certain("a time on the trial's clock", value, report);
+        return value && value.of([]) + (format ? first : 0);
       }
       report("start-unclear", node.at, { text: node.text, example: show(first) });
       return undefined;

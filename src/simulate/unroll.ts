@@ -33,7 +33,7 @@ export interface Unrolled {
 
 const nothing: Draft = { weights: new Map(), direct: 0 };
 const mostStates = 50_000;
-/** Copies in all where they hold cells, and where they hold none: those cost little. */
+/** Copies in all where they hold cells or nothing ever leaves, and elsewhere where they hold none: those cost little. */
 const mostCopies = 10_000;
 const mostBare = 100_000;
 const smallestPass = 1e-12;
@@ -117,7 +117,7 @@ class Unroller {
           copy.goes.set(tube, seeds);
         }
       }
-      const most = this.rows.length > 0 ? mostCopies : mostBare;
+      const most = this.rows.length > 0 || isClosed(this.plant) ? mostCopies : mostBare;
       if (waiting.length > 0 && (this.rows.length > mostStates || this.copies.length > most)) return waiting[0].delay;
     }
     return Number.POSITIVE_INFINITY;

@@ -116,7 +116,7 @@ outlets: [product]
     const found = Array.from({ length: 25 }, () => {
       const table = standards(Array.from({ length: 6 }, () => 2 * noise.normal()));
       const trial = trialOf(
-        csv((t) => 5 + 400 * 0.9 * three(t)),
+        csv((t) => 5 + 400 * (0.9 * three(t) + 0.0001 * noise.normal())),
         `${points}\nnoise: {floor: 0.0001 g/L}`,
         { ...detector, files: { "s.csv": table } },
       );

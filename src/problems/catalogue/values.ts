@@ -47,6 +47,14 @@ export const valueEntries = {
     says: ({ what }) => `the \`±\` of ${what} would be carried into no interval: only what has a name may vary`,
     fix: "give the value a name, such as `constants: {tank-volume: 100 L ± 2 %}`, and write the name here",
   }),
+  "spread-not-carried": entry<{ what: string; named: boolean }>({
+    severity: "error",
+    says: ({ what }) => `the \`±\` of ${what} would be carried into no interval`,
+    fix: ({ named }) =>
+      named
+        ? "write a name there that the network declares with its `±`, such as `constants: {retention: 1.1 ± 0.2}`"
+        : "leave the `±` out, run with the value at each end of what is possible, and see what changes",
+  }),
   "bad-uncertainty": entry<FaultData["bad-uncertainty"]>({
     severity: "error",
     says: (d) => d.why,
