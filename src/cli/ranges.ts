@@ -1,7 +1,8 @@
+import type { Network } from "../model/network.js";
 import { collector } from "../problems/report.js";
 import type { ScalarNode } from "../read/tree.js";
 import { emptyScope, resolveValue } from "../resolve/value.js";
-import { isCount } from "../study/counts.js";
+import { countsOf, isCount } from "../study/counts.js";
 import type { Input } from "../study/inputs.js";
 import { type Axis, spaced } from "../study/sweep.js";
 import { nearest } from "../text/nearest.js";
@@ -40,6 +41,18 @@ export function axisFrom(text: string, inputs: readonly Input[]): Axis {
   if (count < 2 || count > mostPoints) throw new UsageError(`${option}: 2 to ${mostPoints} points make a sweep`);
   const values = spaced(from, to, count, log);
   return { input, values: whole ? [...new Set(values.map(Math.round))] : values, log };
+}
+
+/**
+ * A number of tanks moves in whole steps, each of them another vessel: only a sweep goes through these.
+ * @throws UsageError where the name is of one
+ */
+export function requireNoCount(name: string, network: Network, option: string): void {
+  if (!countsOf({ network }).some((c) => c.name === name)) return;
+  const change = option === "--set" ? "write another number in the file, or sweep it" : "sweep it";
+  throw new UsageError(
+    `${option}: '${name}' moves in whole steps, each of them another vessel; ${change}: backmix sweep with --over "${name}=1..8"`,
+  );
 }
 
 /** @throws UsageError where there is no such input */

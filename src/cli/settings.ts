@@ -11,6 +11,7 @@ import { nearest } from "../text/nearest.js";
 import type { Dimension } from "../units/dimension.js";
 import { formatQuantity } from "../units/format.js";
 import { UsageError } from "./outcome.js";
+import { requireNoCount } from "./ranges.js";
 
 /**
  * The values of `--set name=value`, SI by name; a later one of the same name counts.
@@ -23,6 +24,7 @@ export function settingsFrom(network: Network, written: readonly string[] = []):
     written.map((text) => {
       const name = nameIn(text);
       const named = settable.find((n) => n.name === name);
+      if (!named) requireNoCount(name, network, "--set");
       if (!named) throw new UsageError(`there is no '${name}' to set; ${suggest(name, names)}`);
       return [name, valueIn(text, named.value.dimension)];
     }),
@@ -49,6 +51,7 @@ export function settingsBeside(
   const known = network.names.filter((n) => n.role !== "inflow").map((n) => n.name);
   for (const name of rest.map(nameIn)) {
     if (known.includes(name)) continue;
+    requireNoCount(name, network, "--set");
     throw new UsageError(`there is no '${name}' to set; ${suggest(name, [...known, ...inputs.map((i) => i.name)])}`);
   }
   return { set: settingsFrom(network, rest), duty: dutyWith(duty, own) };

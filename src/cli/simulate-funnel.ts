@@ -16,6 +16,8 @@ import { clockFrom } from "./times.js";
 
 const faults: Readonly<Record<FunnelFault, string>> = {
   "no-upset": "--funnel needs a duty with an upset, such as `feeds: {feed: {A: {from: 1 mol/L, to: 1.3 mol/L}}}`",
+  "not-an-upset-of-a-feed":
+    "--funnel is for an upset of what a feed brings, such as `feeds: {feed: {A: {from: 1 mol/L, to: 1.3 mol/L}}}`; the duty has only a flow or a logged feed that changes: see what that does without --funnel",
   "several-upsets": "--funnel looks at one upset, and the duty has several",
   "no-limit": "--funnel needs a limit, such as `report: [time A at product above 0.2 mol/L]`",
   "beyond-already": "--funnel: the steady state before the upset is beyond the limit already",

@@ -14,7 +14,7 @@ import { branchesJson } from "./json/branches.js";
 import { type Outcome, UsageError } from "./outcome.js";
 import { plantAt } from "./plant.js";
 import { progressOn } from "./progress.js";
-import { inputNamed, rangeFrom } from "./ranges.js";
+import { inputNamed, rangeFrom, requireNoCount } from "./ranges.js";
 import { settingsBeside } from "./settings.js";
 import type { SimulateOptions } from "./simulate-options.js";
 import { branchesText } from "./text/branches.js";
@@ -36,6 +36,7 @@ export async function simulateStates(
     throw new UsageError(`-o '${options.output}': write to .csv, .svg or .png`);
   }
   const operation: Operation = { network, duty, values: set, kinetics: new Map() };
+  requireNoCount(over.slice(0, equals).trim(), network, "--states");
   const input = inputNamed(over.slice(0, equals).trim(), inputsOf(operation), "--states");
   const { from, to, unit } = rangeFrom(over.slice(equals + 1).trim(), input, option);
   const reporting = { ...duty, report: steadyLines(duty) };

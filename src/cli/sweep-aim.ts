@@ -10,7 +10,7 @@ import type { Context } from "./context.js";
 import { aimJson } from "./json/sweep.js";
 import { type Outcome, UsageError } from "./outcome.js";
 import { progressOn } from "./progress.js";
-import { inputNamed, rangeFrom } from "./ranges.js";
+import { inputNamed, rangeFrom, requireNoCount } from "./ranges.js";
 import { type Asked, carriedBeside, type SweepOptions } from "./sweep-options.js";
 import { aimText } from "./text/aim.js";
 
@@ -20,6 +20,7 @@ export function aimOutcome({ operation, rows, carries }: Asked, options: SweepOp
   const aim = resolveAim(scalar(options.aim ?? ""), operation.duty, report);
   if (!aim) throw new UsageError(`--aim: ${problems.map((p) => `${p.message}; ${p.fix}`).join("; ")}`);
   if (options.by === undefined) throw new UsageError("--aim needs --by NAME: the input that may move");
+  requireNoCount(options.by, operation.network, "--by");
   const input = inputNamed(options.by, inputsOf(operation), "--by");
   const range = rangeOf(input, options.between);
   const confidence = options.confidence === undefined ? undefined : shareFrom(options.confidence);

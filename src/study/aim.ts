@@ -6,10 +6,11 @@ import type { AimRange, Stretch } from "./aim-range.js";
 import { betterIs } from "./direction.js";
 import { rowWith } from "./inputs.js";
 import { type JumpFound, jumpsAlong } from "./jumps.js";
-import { metByAll } from "./met-by-all.js";
+import { metByAll, metByStable } from "./met-by-all.js";
 import { noRow, type Operation, operate, type Row, valuesAt } from "./operate.js";
 import { type OtherStates, otherStates } from "./other-states.js";
 import { spaced, type Watch } from "./sweep.js";
+import { type WashOutFound, washOutsAlong } from "./wash-outs.js";
 
 export type { AimRange, Stretch } from "./aim-range.js";
 
@@ -33,8 +34,12 @@ export interface AimResult {
   readonly met: readonly Stretch[];
   /** The same in every stable steady state that was found; undefined where there is but one, or it was not followed. */
   readonly metByAll: readonly Stretch[] | undefined;
+  /** Where another state that lasts meets it, while the followed one is unstable and meets it nowhere; undefined elsewhere. */
+  readonly metByStable: readonly Stretch[] | undefined;
   /** Where the figure jumps at the middle values. */
   readonly jumps: readonly JumpFound[];
+  /** Where something is washed out. */
+  readonly washOuts: readonly WashOutFound[];
   /** The point that comes nearest; where the aim is met, the best. */
   readonly best: Reached | undefined;
   /** Stretches in which no vessel is possible, with a reason. */
@@ -152,7 +157,9 @@ export function solveAim(operation: Operation, aim: Aim, range: AimRange, option
     crossings: zeros.flatMap(reached),
     met,
     metByAll: stopped || met.length === 0 ? undefined : metByAll(own, aim, range, met, others),
+    metByStable: stopped || met.length > 0 || sign === "=" ? undefined : metByStable(own, aim, range, others),
     jumps,
+    washOuts: stopped || options.cancelled?.() ? [] : washOutsAlong(own, input, [from, to], others),
     best: best && reached(best.x)[0],
     impossible: stretches(first, [], Number.isNaN).map((s) => ({
       ...inInput(s),

@@ -21,7 +21,7 @@ export const isCount = (input: Input): input is CountInput => "variant" in input
 const most = 500;
 
 /** How many tanks in series bodies have (`chain.repeat`), where the network writes it; nothing where it was not read from a file. */
-export function countsOf({ network }: Operation): CountInput[] {
+export function countsOf({ network }: Pick<Operation, "network">): CountInput[] {
   if (!isDocument(network)) return [];
   const { tree, path, files } = { ...network, path: network.tree.at.source.path };
   return entriesOf(child(tree, "compartments")).flatMap(({ key, value }): CountInput[] => {

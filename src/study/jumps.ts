@@ -35,6 +35,8 @@ interface Point {
   readonly values: readonly number[];
 }
 
+const shares: readonly string[] = ["conversion", "yield", "selectivity"];
+
 /** Unknowns of a network whose states are followed along the input. */
 const mostFollowed = 60;
 
@@ -67,6 +69,8 @@ export function jumpsAlong(
     for (const k of suspects(sorted.map((p) => p.values[line] ?? Number.NaN))) {
       const jump = jumpBetween(f, sorted[k].x, sorted[k + 1].x);
       if (!jump) continue;
+      // A share is known to rounding: what jumps about nothing there is no jump.
+      if (shares.includes(duty.report[line].what) && Math.abs(jump.after - jump.before) < 1e-9) continue;
       const { below, above, before, after } = jump;
       const here = { line, before, after };
       const same = found.findIndex((j) => j.below < above && below < j.above);

@@ -17,7 +17,7 @@ import { statesAlong } from "./states-along.js";
 export function metByAll(
   own: Operation,
   aim: Aim,
-  { input, from, to }: AimRange,
+  range: AimRange,
   met: readonly Stretch[],
   others: readonly OtherStates[],
 ): Stretch[] | undefined {
@@ -26,26 +26,76 @@ export function metByAll(
     o.states.some((s) => !s.reached && s.stable !== false && over(s.figures[0].value) < 0),
   );
   if (!missing || !followable(own, noRow)) return undefined;
+  return without(
+    met,
+    stretchesOf(
+      own,
+      range,
+      (figure) => -over(figure),
+      (stable) => stable !== false,
+    ),
+  );
+}
+
+/**
+ * Where another state, one that lasts, meets an aim that the followed state meets nowhere.
+ * @param own the operation, reporting the figure of the aim alone
+ * @returns undefined where the followed state lasts wherever another meets the aim, or they are too many to follow
+ */
+export function metByStable(
+  own: Operation,
+  aim: Aim,
+  range: AimRange,
+  others: readonly OtherStates[],
+): Stretch[] | undefined {
+  const over = (value: number): number => (value - aim.target.value) * (aim.sign === "<=" ? -1 : 1);
+  const meeting = others.some(
+    ({ states }) =>
+      states.some((s) => s.reached && s.stable === false) &&
+      states.some((s) => !s.reached && s.stable === true && over(s.figures[0].value) >= 0),
+  );
+  if (!meeting || !followable(own, noRow)) return undefined;
+  const found = joined(stretchesOf(own, range, over, (stable) => stable === true));
+  return found.length > 0 ? found : undefined;
+}
+
+/** Stretches of the input over which a state that counts by its stability has a figure that makes `over` more than 0. */
+function stretchesOf(
+  own: Operation,
+  { input, from, to }: AimRange,
+  over: (figure: number) => number,
+  counts: (stable: boolean | undefined) => boolean,
+): Stretch[] {
   const { branches } = statesAlong(own, input, [from, to]);
   const value = ({ at, state }: BranchPoint): number => {
     const { plant } = plantOf(own, rowWith(noRow, [input], [at]));
     return plant ? over(figuresOf(plant, own.duty, state)[0].value) : Number.NaN;
   };
-  const out = branches.flatMap((points) => {
-    const lasting = points.map((p) => p.stable !== false);
+  return branches.flatMap((points) => {
+    const lasting = points.map((p) => counts(p.stable));
     const values = points.map((p, k) => (lasting[k] ? value(p) : Number.NaN));
     return points.flatMap((p, k): Stretch[] => {
       const before = points[k - 1];
       if (!before || !lasting[k] || !lasting[k - 1]) return [];
       const [a, b] = [values[k - 1], values[k]];
-      if (a >= 0 && b >= 0) return [];
+      if (a <= 0 && b <= 0) return [];
       // Points lie close: where the figure passes the target between two of them, a straight line tells well enough.
       const zero = before.at + ((p.at - before.at) * a) / (a - b);
-      const [s, e] = a < 0 && b < 0 ? [before.at, p.at] : a < 0 ? [before.at, zero] : [zero, p.at];
+      const [s, e] = a > 0 && b > 0 ? [before.at, p.at] : a > 0 ? [before.at, zero] : [zero, p.at];
       return [{ from: Math.min(s, e), to: Math.max(s, e) }];
     });
   });
-  return without(met, out);
+}
+
+/** Stretches that touch or overlap, as one; ascending. */
+function joined(stretches: readonly Stretch[]): Stretch[] {
+  const all: Stretch[] = [];
+  for (const s of [...stretches].sort((a, b) => a.from - b.from)) {
+    const last = all.at(-1);
+    if (!last || s.from > last.to) all.push(s);
+    else all[all.length - 1] = { from: last.from, to: Math.max(last.to, s.to) };
+  }
+  return all;
 }
 
 /** Stretches without what others take out of them. */

@@ -1,11 +1,16 @@
 import { type Figure, figuresOf } from "../reaction/figures.js";
 import { steadyStates } from "../reaction/states.js";
+import type { SteadyState } from "../reaction/steady.js";
 import { dutySettings, type Operation, plantOf, type Row } from "./operate.js";
 
 /** A steady state of an operation, by what it reports. */
 export interface StateFigures {
   readonly figures: readonly Figure[];
   readonly stable: boolean | undefined;
+  /** Unstable, and swinging away: with no other state to run to, the vessel swings about it for good. */
+  readonly swings: boolean;
+  /** Species of which it holds as good as nothing while another state found at the same point holds some. */
+  readonly without: readonly string[];
   /** Is it the one whose figures are reported: that a vessel filled with what is fed runs to? */
   readonly reached: boolean;
 }
@@ -35,15 +40,35 @@ export function otherStates(operation: Operation, row: Row, at: readonly number[
   }
   const settings = dutySettings(duty, row);
   const { states, left } = steadyStates(plant, duty.chemistry, duty, settings);
-  const found = states.map(({ state, stable, reached }) => ({
+  const found = states.map(({ state, stable, mode, reached }) => ({
     figures: figuresOf(plant, duty, state, settings),
     stable,
+    swings: stable === false && mode !== undefined && mode.swing > 0,
+    without: state.species.filter((_, i) => {
+      const most = states.reduce((sum, other) => Math.max(sum, largest(other.state, i)), 0);
+      return largest(state, i) < absent * most;
+    }),
     reached,
   }));
   const doubtful = found.length > 1 || found.some((s) => s.reached && s.stable === false);
   if (!doubtful && !(duty.heat && left.length > 0)) return undefined;
   return { at, states: found, left };
 }
+
+/** Part of what another state holds of a species that is as good as nothing. */
+const absent = 1e-9;
+
+/** The largest concentration of a species in a plant, SI. */
+function largest({ species, concentrations }: SteadyState, i: number): number {
+  let most = 0;
+  for (let k = i; k < concentrations.length; k += species.length)
+    if (concentrations[k] > most) most = concentrations[k];
+  return most;
+}
+
+/** Does the vessel swing for good, for it has no stable state that was found? */
+export const onlySwings = ({ states }: OtherStates): boolean =>
+  states.every((s) => s.stable === false) && states.some((s) => s.reached && s.swings);
 
 /** Every so many of a list that at most `most` remain, first and last among them. */
 export function someOf<T>(list: readonly T[], most: number): T[] {

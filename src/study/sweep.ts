@@ -5,6 +5,7 @@ import { type JumpFound, jumpsAlong } from "./jumps.js";
 import { noRow, type Operation, operate, type Row, valuesAt } from "./operate.js";
 import { type OtherStates, otherStates, someOf } from "./other-states.js";
 import { interval95 } from "./spread.js";
+import { type WashOutFound, washOutsAlong } from "./wash-outs.js";
 
 /** One input of a sweep and its values, SI. */
 export interface Axis {
@@ -32,6 +33,8 @@ export interface Sweep {
   readonly others: readonly OtherStates[];
   /** Where figures jump along the first axis, between points that no line may join. */
   readonly jumps: readonly SweepJump[];
+  /** Where something is washed out over the one input of a sweep. */
+  readonly washOuts: readonly WashOutFound[];
   readonly draws: number;
   readonly stopped: boolean;
 }
@@ -84,7 +87,12 @@ export function sweep(operation: Operation, axes: readonly Axis[], rows: readonl
   });
   const stopped = points.length < places.length;
   const jumps = stopped ? [] : jumpsOf(operation, axes, points, watch);
-  return { operation, axes, points, others, jumps, draws: rows.length, stopped };
+  const [{ input, values }] = axes;
+  const washOuts =
+    stopped || axes.length > 1 || isCount(input) || watch.cancelled?.()
+      ? []
+      : washOutsAlong(operation, input, [values[0], values[values.length - 1]], others);
+  return { operation, axes, points, others, jumps, washOuts, draws: rows.length, stopped };
 }
 
 /** A row with those inputs at values that do not make another network. */

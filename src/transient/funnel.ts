@@ -2,6 +2,7 @@ import type { Plant } from "../compile/plant.js";
 import type { Duty, FeedCourse, Reported } from "../model/duty.js";
 import type { Value } from "../model/value.js";
 import { smooth } from "./beyond.js";
+import { changes } from "./course-line.js";
 import { endOf } from "./in-time.js";
 import { type Look, transient } from "./transient.js";
 
@@ -28,7 +29,13 @@ export interface FunnelPoint {
 }
 
 /** Why there is no curve. */
-export type FunnelFault = "no-upset" | "several-upsets" | "no-limit" | "beyond-already" | "stopped";
+export type FunnelFault =
+  | "no-upset"
+  | "not-an-upset-of-a-feed"
+  | "several-upsets"
+  | "no-limit"
+  | "beyond-already"
+  | "stopped";
 
 const rough = { relative: 1e-7, absolute: 1e-10, balance: false };
 /** Lengths of upsets, from and to parts of the mean time, evenly in their logarithm. */
@@ -48,7 +55,7 @@ export function funnelOf(plant: Plant, duty: Duty, lengths?: readonly number[]):
   const upsets = [...duty.feeds].flatMap(([feed, { species, courses }]) =>
     [...(courses ?? [])].flatMap(([of, course]) => (course.is === "upset" ? [{ feed, of, course, species }] : [])),
   );
-  if (upsets.length === 0) return "no-upset";
+  if (upsets.length === 0) return changes(duty) ? "not-an-upset-of-a-feed" : "no-upset";
   if (upsets.length > 1) return "several-upsets";
   const line = duty.report.find((l) => l.what === "time-beyond" && (l.of !== "" || duty.heat !== undefined));
   if (!line?.limit) return "no-limit";

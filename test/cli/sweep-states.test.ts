@@ -49,6 +49,27 @@ species: {S: {}, X: {}}
 constants: {mu: 0.5 1/h, ks: 0.1 g/L}
 reactions: [{makes: {S: -2, X: 1}, rate: mu * S / (ks + S) * X}]
 `,
+  "fed.yaml": `duty: Started
+format: 1
+chemistry: monod.chem.yaml
+feeds: {feed: {S: 10 g/L}}
+contents: {tank: {X: 1 g/L}}
+report: [conversion of S]
+`,
+  "swinging.yaml": `duty: Cooled
+format: 1
+chemistry: swinging.chem.yaml
+heat: {tank: {jacket: 330 K, conductance: 300 W/K}}
+feeds: {feed: {A: 4 mol/L, temperature: 320 K}}
+report: [conversion of A]
+`,
+  "swinging.chem.yaml": `chemistry: Hot
+format: 1
+species: {A: {}, P: {}}
+constants: {k: {at: 350 K, value: 0.3 1/min, activation: 100 kJ/mol}}
+medium: {heat-capacity: 4 kJ/L/K}
+reactions: [{equation: A -> P, rate: k * A, heat: -200 kJ/mol}]
+`,
 };
 
 describe("several steady states in a sweep", () => {
@@ -154,5 +175,60 @@ describe("several steady states in a sweep", () => {
     );
     const aim = ["--aim", "conversion of A >= 60", "--by", "feed.flow", "--between", "1 L/min..2 L/min"];
     expect(await err("sweep", "tank.yaml", "--duty", "hot.yaml", ...aim)).toContain("conversion of A cannot be 6000 %");
+  });
+});
+
+describe("what a vessel that washes out or swings is told", () => {
+  // Washed out where what is fed grows no faster than it leaves: D = mu S / (ks + S) (Monod).
+  const washedOut = (0.5 * 10) / 10.1;
+
+  test("a sweep and an aim name the wash-out, where no figure jumps", async () => {
+    const sweep = ["sweep", "chemostat.yaml", "--duty", "fed.yaml"];
+    const over = await json([...sweep, "--over", "Q=0.2 L/h..0.8 L/h:4"], { files });
+    const aim = ["--aim", "conversion of S >= 90 %", "--by", "Q", "--between", "0.2 L/h..0.8 L/h"];
+    const aimed = await json([...sweep, ...aim], { files });
+    for (const { document } of [over, aimed]) {
+      expect(at(document, "washOuts")).toHaveLength(1);
+      expect(at(document, "washOuts.0.at.value")).toBeCloseTo(washedOut, 4);
+      expect(at(document, "washOuts.0.of")).toBe("X");
+    }
+    const { out } = await backmix([...sweep, ...aim], { files });
+    expect(out.replace(/\s+/g, " ")).toContain("At Q = 0.495 L/h X washes out as Q rises");
+  });
+
+  test("an aim is not infeasible where only the followed state, an unstable one, misses it", async () => {
+    const args = ["sweep", "chemostat.yaml", "--duty", "monod.yaml", "--aim", "conversion of S >= 90 %"];
+    const more = ["--by", "Q", "--between", "0.2 L/h..0.8 L/h"];
+    const { out } = await backmix([...args, ...more], { files });
+    const said = out.replace(/\s+/g, " ");
+    expect(said).not.toContain("Infeasible");
+    expect(said).toContain("another, a stable one, meets the aim where Q is up to 0.4");
+    const { document } = await json([...args, ...more], { files });
+    // S = 1 g/L is left: D = 0.5 / 1.1.
+    expect(Math.abs((at(document, "metInStableState.0.to.value") as number) / (0.5 / 1.1) - 1)).toBeLessThan(0.005);
+    // Nothing jumps about no conversion at all.
+    expect(at(document, "jumps")).toEqual([]);
+    const missed = await backmix([...args.slice(0, 5), "conversion of S >= 99.9 %", ...more], { files });
+    expect(missed.out).toContain("Infeasible");
+  });
+
+  test("an only state that swings is named so, and nobody is sent to `contents`", async () => {
+    const args = ["sweep", "tank.yaml", "--duty", "swinging.yaml", "--over", "feed.temperature=319 K..321 K:2"];
+    const { out } = await backmix(args, { files });
+    const said = out.replace(/\s+/g, " ");
+    expect(said).toContain("the vessel swings and does not settle");
+    expect(said).not.toContain("`contents:`");
+  });
+
+  test("a run in time that has not come to rest says so, and one that has does not", async () => {
+    const run = async (duty: string, until: string): Promise<string> => {
+      const { out } = await backmix(["simulate", "tank.yaml", "--duty", duty, "--transient", "--until", until], {
+        files,
+      });
+      return out.replace(/\s+/g, " ");
+    };
+    expect(await run("swinging.yaml", "100 min")).toContain("still swings at the end of this run");
+    expect(await run("hot.yaml", "10 min")).toContain("still changes at the end of this run");
+    expect(await run("hot.yaml", "300 min")).not.toContain("at the end of this run");
   });
 });

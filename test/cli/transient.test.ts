@@ -125,6 +125,20 @@ describe("a duty in time", () => {
       expect(level.value - 1).toBeCloseTo(0.125 / -Math.expm1(-0.15 * lasting.value), 4);
   });
 
+  test("a limit curve of a flow that changes is refused for what it is", async () => {
+    const flow = files["upset.yaml"].replace(
+      "{from: 1 mol/L ± 2 %, to: 2 mol/L, start: 2 min, lasting: 3 min}",
+      "1 mol/L",
+    );
+    const changed = {
+      ...files,
+      "flow.yaml": `${flow}flows: {feed: {from: 1 L/min, to: 2 L/min, start: 5 min, lasting: 10 min}}\n`,
+    };
+    const { status, err } = await backmix(simulate("tank.yaml", "flow.yaml", "--funnel"), { files: changed });
+    expect(status).toBe(2);
+    expect(err).toContain("the duty has only a flow or a logged feed that changes");
+  });
+
   test("a flask needs an end, and runs to it", async () => {
     expect((await backmix(simulate("flask.yaml", "batch.yaml"), { files })).status).toBe(2);
     expect((await backmix(["simulate", "flask.yaml", "--duty", "batch.yaml"], { files })).status).toBe(2);

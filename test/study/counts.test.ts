@@ -61,6 +61,17 @@ describe("the number of tanks in a row is an input of sweeps", () => {
     const half = await backmix([...base, "--over", "chain.repeat=1..2.5"], { files });
     expect([half.status, half.err]).toEqual([2, expect.stringContaining("moves in whole steps")]);
     const aim = await backmix([...base, "--aim", "conversion of A >= 60 %", "--by", "chain.repeat"], { files });
-    expect([aim.status, aim.err]).toEqual([2, expect.stringContaining("there is no 'chain.repeat'")]);
+    expect([aim.status, aim.err]).toEqual([2, expect.stringContaining("'chain.repeat' moves in whole steps")]);
+  });
+
+  test.each([
+    ["sweep", "--aim", "conversion of A >= 60 %", "--by", "chain.repeat", "--between", "1..4"],
+    ["simulate", "--set", "chain.repeat=2"],
+    ["simulate", "--states", "chain.repeat=1..4"],
+  ])("elsewhere a sweep is named: %s %s", async (command, ...more) => {
+    const { err, status } = await backmix([command, "net.yaml", "--duty", "duty.yaml", ...more], { files });
+    expect(status).toBe(2);
+    expect(err).toContain("'chain.repeat' moves in whole steps");
+    expect(err).toContain('--over "chain.repeat=1..8"');
   });
 });

@@ -4,12 +4,22 @@ import type { AimResult, Reached } from "../../study/aim.js";
 import type { JumpFound } from "../../study/jumps.js";
 import type { OtherStates } from "../../study/other-states.js";
 import type { Sweep } from "../../study/sweep.js";
+import type { WashOutFound } from "../../study/wash-outs.js";
 import { inUnit, type Unit } from "../../units/unit.js";
 import { finite, type QuantityJson, quantity, series, unitName } from "./quantity.js";
 import { reportedJson } from "./steady.js";
 
 /** A sweep: its inputs, then every point with its figures, or why there are none. Conversion, yield and selectivity are fractions. */
-export function sweepJson({ operation, axes, points, others, jumps, draws, stopped }: Sweep): Record<string, unknown> {
+export function sweepJson({
+  operation,
+  axes,
+  points,
+  others,
+  jumps,
+  washOuts,
+  draws,
+  stopped,
+}: Sweep): Record<string, unknown> {
   return {
     over: axes.map(({ input, values }) => ({ name: input.name, ...series(values, input.unit) })),
     points: points.map(({ at, figures, cannot, intervals }) => ({
@@ -34,6 +44,7 @@ export function sweepJson({ operation, axes, points, others, jumps, draws, stopp
       ...jumpJson(jump, axes[0].input.unit, operation.duty.report, points.find((p) => p.figures)?.figures ?? []),
       ...(axes[1] && jump.beside !== undefined ? { where: quantity(jump.beside, axes[1].input.unit) } : {}),
     })),
+    ...(washOuts.length > 0 ? { washOuts: washOutsJson(washOuts, axes[0].input.unit) } : {}),
     draws,
     ...(stopped ? { stopped: "cancelled" } : {}),
   };
@@ -60,6 +71,9 @@ export const jumpJson = (
       }
     : {}),
 });
+
+const washOutsJson = (washOuts: readonly WashOutFound[], unit: Unit): object[] =>
+  washOuts.map(({ at, of, as }) => ({ at: quantity(at, unit), of, as }));
 
 const intervalJson = (interval: readonly [number, number] | undefined, unit: Unit): (number | null)[] | null =>
   interval ? interval.map((v) => finite(inUnit(v, unit))) : null;
@@ -92,8 +106,23 @@ export function sweepCsv({ operation, axes, points }: Sweep): string {
 
 /** What an aim came to. */
 export function aimJson(found: AimResult): Record<string, unknown> {
-  const { aim, range, sign, confidence, crossings, met, metByAll, jumps, best, impossible, others, draws, stopped } =
-    found;
+  const {
+    aim,
+    range,
+    sign,
+    confidence,
+    crossings,
+    met,
+    metByAll,
+    metByStable,
+    jumps,
+    washOuts,
+    best,
+    impossible,
+    others,
+    draws,
+    stopped,
+  } = found;
   const { unit } = range.input;
   const stretch = ({ from, to }: { from: number; to: number }): object => ({
     from: quantity(from, unit),
@@ -107,6 +136,8 @@ export function aimJson(found: AimResult): Record<string, unknown> {
     crossings: crossings.map((c) => reachedJson(c, unit)),
     met: met.map(stretch),
     ...(metByAll ? { metInEveryState: metByAll.map(stretch) } : {}),
+    ...(metByStable ? { metInStableState: metByStable.map(stretch) } : {}),
+    ...(washOuts.length > 0 ? { washOuts: washOutsJson(washOuts, unit) } : {}),
     jumps: best ? jumps.map((jump) => jumpJson(jump, unit, [aim.line], [best.figure])) : [],
     best: best ? reachedJson(best, unit) : null,
     impossible: impossible.map((s) => ({ ...stretch(s), why: s.why })),
@@ -138,8 +169,9 @@ const reachedJson = (
 /** Steady states that a search found at one point, each with what it reports. */
 export const otherStatesJson = ({ at, states, left }: OtherStates, units: readonly Unit[]): object => ({
   ...(units.length > 0 ? { at: at.map((v, k) => quantity(v, units[k])) } : {}),
-  states: states.map(({ figures, stable, reached }) => ({
+  states: states.map(({ figures, stable, swings, reached }) => ({
     stable: stable ?? null,
+    ...(swings ? { swings } : {}),
     fromFeed: reached,
     report: figures.map((f) => ({ name: f.name, ...reportedJson(f) })),
   })),

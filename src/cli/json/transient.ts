@@ -2,6 +2,7 @@ import type { Plant } from "../../compile/plant.js";
 import type { Duty } from "../../model/duty.js";
 import { temperatureUnit } from "../../reaction/figures.js";
 import { amountUnit, speciesUnits } from "../../reaction/species-units.js";
+import { atEnd } from "../../transient/at-end.js";
 import type { TransientFigure } from "../../transient/figures.js";
 import { passageOf } from "../../transient/passage.js";
 import type { Course, Transient } from "../../transient/transient.js";
@@ -45,6 +46,7 @@ export function transientJson(
   const until = run.times[run.times.length - 1];
   return {
     start: run.start,
+    atEnd: run.stopped ? null : atEnd(run),
     outlets: all(run.outlets),
     compartments: all(run.places),
     report: figures.map((f) => {

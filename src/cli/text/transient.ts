@@ -3,6 +3,7 @@ import type { Duty } from "../../model/duty.js";
 import { temperatureUnit } from "../../reaction/figures.js";
 import { amountUnit, speciesUnits } from "../../reaction/species-units.js";
 import { dutyCautions } from "../../report/duty-cautions.js";
+import { type AtEnd, atEnd } from "../../transient/at-end.js";
 import type { TransientFigure } from "../../transient/figures.js";
 import { passageOf } from "../../transient/passage.js";
 import { closes, type Transient } from "../../transient/transient.js";
@@ -33,11 +34,27 @@ export function transientText(
     `${plant.network.title}: ${duty.title}, ${start}, to ${formatNumber(until)} ${clock.unit.name}${run.stopped ? " (stopped too soon)" : ""}`,
     run.stopped ? "" : passages(plant, duty, run, clock, looks),
     figuresText(plant, duty, run, figures, clock),
+    endText(duty, run),
     balanceText(run),
     dutyCautions(duty)
       .map((c) => wrap("  caution  ", c.says))
       .join("\n"),
   );
+}
+
+const restless: Readonly<Record<AtEnd, string>> = {
+  settled: "",
+  changes:
+    "What leaves still changes at the end of this run: figures at the end are of one moment on its way. A longer run (--until) shows where it goes.",
+  swings:
+    "What leaves still swings at the end of this run: figures at the end are one point of the swing, not what it makes on average. Lowest and highest above tell how far it goes.",
+};
+
+/** That figures as they stand at the end are not those of a vessel at rest. */
+function endText({ report }: Duty, run: Transient): string {
+  const asked = report.some((line) => line.what !== "time-beyond" && line.what !== "tracer-time");
+  const says = asked ? restless[atEnd(run)] : "";
+  return says === "" ? "" : wrap("  ", says);
 }
 
 function passages(plant: Plant, duty: Duty, run: Transient, { si, unit }: Clock, looks: readonly string[]): string {

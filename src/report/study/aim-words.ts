@@ -2,7 +2,7 @@ import type { AimResult, Stretch } from "../../study/aim.js";
 import { formatQuantity } from "../../units/format.js";
 import { fromUnit, inUnit, type Unit } from "../../units/unit.js";
 import { chance } from "../digits.js";
-import { jumpWords } from "./jump-words.js";
+import { jumpWords, washOutWords } from "./jump-words.js";
 import { aimStatesWords } from "./states-words.js";
 
 const digits = 4;
@@ -12,7 +12,21 @@ export const aimText = (text: string): string => text.replace(">=", "≥").repla
 
 /** The answer to an aim in one to three sentences: where it is met, how surely, what cannot be. */
 export function aimWords(found: AimResult): string[] {
-  const { aim, range, sign, confidence, crossings, met, metByAll, best, impossible, draws, jumps } = found;
+  const {
+    aim,
+    range,
+    sign,
+    confidence,
+    crossings,
+    met,
+    metByAll,
+    metByStable,
+    best,
+    impossible,
+    draws,
+    jumps,
+    washOuts,
+  } = found;
   const { name, unit } = range.input;
   const say = (x: number): string => formatQuantity(x, unit, digits);
   const target = aimText(aim.text);
@@ -22,7 +36,13 @@ export function aimWords(found: AimResult): string[] {
     const reason = best
       ? `the nearest is ${figureWords(found)} at ${name} = ${say(best.at)}`
       : "no vessel is possible anywhere there";
-    said.push(`Infeasible: no ${name} from ${say(range.from)} to ${say(range.to)} gives ${target}${sure}; ${reason}.`);
+    const none = metByStable ? "At the steady state that is followed no" : "Infeasible: no";
+    said.push(`${none} ${name} from ${say(range.from)} to ${say(range.to)} gives ${target}${sure}; ${reason}.`);
+    if (metByStable) {
+      said.push(
+        `Where that state is unstable the vessel does not stay there: another, a stable one, meets the aim where ${name} is ${whereWords(metByStable, found)} (interpolated).`,
+      );
+    }
   } else if (sign === "=") {
     const [one, ...more] = crossings;
     said.push(
@@ -53,6 +73,7 @@ export function aimWords(found: AimResult): string[] {
   }
   const figureUnit = best?.figure.unit;
   if (figureUnit) said.push(...jumps.map((jump) => jumpWords(jump, range.input, [aim.line], [figureUnit])));
+  said.push(...washOutWords(washOuts, range.input));
   said.push(...aimStatesWords(found));
   if (metByAll) {
     const where =

@@ -1,3 +1,4 @@
+import { onlySwings } from "../../study/other-states.js";
 import type { ChangedFigure, ChangeOutcome, Prediction, StudyResult } from "../../study/result.js";
 import type { Unit } from "../../units/unit.js";
 import { chance, estimateLine, figureLine } from "../digits.js";
@@ -113,6 +114,8 @@ function makes(result: StudyResult): string[] {
 /** That the vessel may as well run at another steady state, with the figure that is farthest from this. */
 function otherState({ states, value, name }: Prediction, line: number, unit: Unit): string {
   const followed = states?.states.find((s) => s.reached);
+  if (states && onlySwings(states))
+    return " No stable state was found: the vessel swings and does not settle; how far, simulate with --transient shows.";
   if (followed?.stable === false) return " That state is unstable: the vessel does not stay there.";
   const others = (states?.states ?? []).filter((s) => !s.reached && s.stable !== false);
   const far = others

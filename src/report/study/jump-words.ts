@@ -2,6 +2,7 @@ import type { Reported } from "../../model/duty.js";
 import type { Input } from "../../study/inputs.js";
 import type { JumpFound } from "../../study/jumps.js";
 import type { Sweep, SweepJump } from "../../study/sweep.js";
+import type { WashOutFound } from "../../study/wash-outs.js";
 import { formatQuantity } from "../../units/format.js";
 import type { Unit } from "../../units/unit.js";
 
@@ -9,7 +10,7 @@ const digits = 4;
 const mostTold = 4;
 
 /** Where figures of a sweep jump, and what the vessel does there; one sentence or two for each place. */
-export function sweepJumpWords({ jumps, axes, operation, points }: Sweep): string[] {
+export function sweepJumpWords({ jumps, washOuts, axes, operation, points }: Sweep): string[] {
   const [{ input }, second] = axes;
   const { report } = operation.duty;
   const units = points.find((p) => p.figures)?.figures?.map((f) => f.unit) ?? [];
@@ -20,7 +21,7 @@ export function sweepJumpWords({ jumps, axes, operation, points }: Sweep): strin
     return jumpWords(jump, input, report, units, where);
   });
   const more = jumps.length - told.length;
-  return more > 0 ? [...told, `There are ${more} more such places.`] : told;
+  return [...told, ...(more > 0 ? [`There are ${more} more such places.`] : []), ...washOutWords(washOuts, input)];
 }
 
 /**
@@ -65,6 +66,13 @@ export function jumpWords(
   }
   return said.filter((s) => s !== "").join(" ");
 }
+
+/** "At Q = 0.475 L/h X washes out as Q rises: …" */
+export const washOutWords = (washOuts: readonly WashOutFound[], { name, unit }: Input): string[] =>
+  washOuts.map(
+    ({ at, of, as }) =>
+      `At ${name} = ${quantity(at, unit)} ${of} washes out as ${name} ${as}: beyond it nothing of it stays. Keep away from there.`,
+  );
 
 const quantity = (si: number, unit: Unit): string => formatQuantity(si, unit, digits);
 

@@ -3,7 +3,7 @@ import type { Duty, Reported } from "../../model/duty.js";
 import type { Figure } from "../../reaction/figures.js";
 import type { AimResult } from "../../study/aim.js";
 import type { Input } from "../../study/inputs.js";
-import type { OtherStates, StateFigures } from "../../study/other-states.js";
+import { type OtherStates, onlySwings, type StateFigures } from "../../study/other-states.js";
 import type { StudyResult } from "../../study/result.js";
 import type { Sweep } from "../../study/sweep.js";
 import { formatQuantity } from "../../units/format.js";
@@ -40,7 +40,8 @@ function statesWords(
   const words: string[] = [];
   const range = (list: readonly OtherStates[]): string => placesOf(list, inputs);
   const several = others.filter((o) => o.states.length > 1);
-  const away = others.filter((o) => o.states.some((s) => s.reached && s.stable === false));
+  const swinging = others.filter(onlySwings);
+  const away = others.filter((o) => !onlySwings(o) && o.states.some((s) => s.reached && s.stable === false));
   if (several.length > 0) {
     const one = worst(several, aim);
     const [shown] = one.states.filter((s) => !s.reached && s.stable !== false && !meets(s, aim)).slice(-1);
@@ -51,6 +52,11 @@ function statesWords(
     const gives = other ? ` ${place(one, inputs)}${kind} gives ${figuresWords(other.figures, lines)}${against}.` : "";
     words.push(
       `Several steady states${range(several)}: which one the vessel runs at depends on how it came there. ${subject} the one that ${filled(contents)} runs to.${capital(gives)}`,
+    );
+  }
+  if (swinging.length > 0) {
+    words.push(
+      `${swinging.some((o) => o.states.length > 1) ? "No steady state found is stable" : "The only steady state found is unstable"}${range(swinging)}: the vessel swings and does not settle, and these figures are not what it will give, not even its mean. See how far it swings: simulate with --duty and --transient.`,
     );
   }
   if (away.length > 0) {
@@ -75,6 +81,12 @@ function statesWords(
 function worst(several: readonly OtherStates[], aim: Aim | undefined): OtherStates {
   const stable = (o: OtherStates) => o.states.some((s) => !s.reached && s.stable !== false);
   const missing = (o: OtherStates) => o.states.some((s) => !s.reached && s.stable !== false && !meets(s, aim));
+  // Where the followed state does not last, what counts is whether another can do.
+  const instead = (o: OtherStates) =>
+    o.states.some((s) => s.reached && s.stable === false) &&
+    o.states.some((s) => !s.reached && s.stable && meets(s, aim));
+  const better = aim && several.find(instead);
+  if (better) return better;
   return (aim && several.find(missing)) ?? several.find(stable) ?? several[0];
 }
 
