@@ -25,10 +25,7 @@ export function judgeAcross(
 type Rule = (c: Contrasted, volume: Unit | undefined) => Finding | string;
 
 const rules: Readonly<Record<Contrast, Rule>> = {
-  repeat: (c) =>
-    c.verdict === "open"
-      ? openWords(c, "whether repeated tests agree")
-      : finding(c.verdict === "differ" ? "repeats-differ" : "repeats-agree", c.at, apartWords(c)),
+  repeat: repeatRule,
   dosing: (c) =>
     c.verdict === "open"
       ? openWords(c, "whether it matters how the tracer is put in")
@@ -53,6 +50,35 @@ const rules: Readonly<Record<Contrast, Rule>> = {
   },
 };
 
+/** Tests under the same conditions: one curve, in the same time, with as much recovered. */
+function repeatRule(c: Contrasted, volume: Unit | undefined): Finding | string {
+  const rank = { differ: 2, open: 1, coincide: 0 } as const;
+  const rankOf = (p: Compared): number => Math.max(rank[p.times], rank[p.amounts]);
+  const apart = (p: Compared): number =>
+    Math.max(...[p.volumes, p.recoveries].map((v) => (v ? Math.abs(v[0].value / v[1].value - 1) : 0)));
+  const worst = c.pairs.reduce((m, p) => ((rankOf(p) - rankOf(m) || apart(p) - apart(m)) > 0 ? p : m));
+  const names = worst.trials.map((t) => `'${t.title}'`).join(" and ");
+  const figures = `${timesWords(worst, volume)}${recoveryWords(worst)}`;
+  const evidence = `${apartWords(c)}${figures === "" ? "" : `; ${names}${figures}`}`;
+  if (c.verdict !== "open") return finding(c.verdict === "differ" ? "repeats-differ" : "repeats-agree", c.at, evidence);
+  if (c.shape === "open")
+    return `${openWords(c, "whether repeated tests agree")}${figures === "" ? "" : `; ${names}${figures}`}`;
+  return `whether repeated tests agree at '${c.at}': ${evidence}; that is neither more than noise and what is declared make nor surely less than ${percent(limit.volume)}: more tracer, or more samples`;
+}
+
+function timesWords({ volumes }: Compared, unit: Unit | undefined): string {
+  if (!volumes) return "";
+  if (unit) return `: ${volumeWords({ volumes }, unit).slice(2)}`;
+  const [a, b] = volumes.map((v) => v.value);
+  return `: flow times mean ${percent(Math.abs(a - b) / Math.max(a, b))} apart`;
+}
+
+function recoveryWords({ recoveries, volumes }: Compared): string {
+  if (!recoveries) return "";
+  const [a, b] = recoveries.map((r) => `${formatNumber(100 * r.value, 4)} ± ${formatNumber(100 * (r.sd ?? 0), 2)} %`);
+  return `${volumes ? ", " : ": "}recovered ${a} and ${b}`;
+}
+
 function flowRule(c: Contrasted, volume: Unit | undefined): Finding | string {
   if (c.verdict === "open") return openWords(c, "whether the curve scales with the flow");
   const widest = c.pairs.reduce((most, p) => ((p.flowRatio ?? 0) > (most.flowRatio ?? 0) ? p : most), c.pairs[0]);
@@ -75,7 +101,7 @@ function sameVolume({ volumes }: Compared): boolean {
   return apart <= Math.max(limit.sure * Math.hypot(a.sd ?? 0, b.sd ?? 0), limit.volume * Math.max(a.value, b.value));
 }
 
-function volumeWords({ volumes }: Compared, unit: Unit | undefined): string {
+function volumeWords({ volumes }: Pick<Compared, "volumes">, unit: Unit | undefined): string {
   if (!volumes || !unit) return "";
   const [a, b] = volumes.map(
     (v) => `${formatQuantity(v.value, unit, 3)} ± ${formatNumber((v.sd ?? 0) / unit.factor, 2)}`,
@@ -84,13 +110,13 @@ function volumeWords({ volumes }: Compared, unit: Unit | undefined): string {
 }
 
 /** The largest difference of all pairs. */
-function apartWords({ pairs, chance, verdict }: Contrasted): string {
+function apartWords({ pairs, chance, shape }: Contrasted): string {
   const most = pairs.reduce((m, p) => (Math.abs(p.apart.value) > Math.abs(m.apart.value) ? p : m), pairs[0]);
   const { value, age, error } = most.apart;
   const names = most.trials.map((t) => `'${t.title}'`).join(" and ");
   const sure = Math.max(...pairs.map((p) => p.atMost));
   const judged =
-    verdict === "differ"
+    shape === "differ"
       ? `noise makes as much with a chance of ${formatNumber(chance, 1)} at most`
       : `${percent(sure)} at most (95 %)`;
   return `${names} differ most at ${formatNumber(age, 2)} half times, where ${percent(Math.abs(value))} ± ${percent(error)} more has left in ${value > 0 ? "the second" : "the first"}; ${judged}`;

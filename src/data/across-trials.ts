@@ -2,7 +2,8 @@ import { type Reading, readingLabel, type Trial } from "../model/trial.js";
 import { type Contrast, type Member, type Pair, pairOf, type TrialOfDay } from "./contrast.js";
 import type { Known } from "./figure.js";
 import { onlyFlow } from "./recovery.js";
-import { ages, standardCurve } from "./standard-curve.js";
+import { heldAgainst, together, type Verdict } from "./repeated.js";
+import { ages, type Noisy, standardCurve } from "./standard-curve.js";
 import { thresholds } from "./thresholds.js";
 
 const limit = thresholds.across;
@@ -28,6 +29,11 @@ export interface Compared {
   readonly relativeError: number;
   /** Flow times mean of both, m3, with one standard error each; undefined where a flow is not known. */
   readonly volumes: readonly [Known, Known] | undefined;
+  /** Tracer seen over tracer given in both, one standard error with those of flow and dose; undefined where it is not known. */
+  readonly recoveries: readonly [Known, Known] | undefined;
+  /** Do flow times mean and recovery agree, where they are known? */
+  readonly times: Verdict;
+  readonly amounts: Verdict;
 }
 
 /** Comparisons of one contrast at one place, judged together. */
@@ -38,7 +44,9 @@ export interface Contrasted {
   /** The chance that noise makes curves that are one differ as much somewhere. */
   readonly chance: number;
   /** `differ`: by more than noise and sampling; `coincide`: within the margin for sure; `open`: neither. */
-  readonly verdict: "differ" | "coincide" | "open";
+  readonly verdict: Verdict;
+  /** The same of the curves alone, counted in half times; repeats must agree in time and recovery too. */
+  readonly shape: Verdict;
 }
 
 /** What the trials of a study say together, without a model. */
@@ -85,7 +93,7 @@ export function acrossTrials(days: readonly TrialOfDay[], seed = 1): AcrossTrial
 }
 
 /** Why the curve of a trial is not that of one vessel in steady flow. */
-function notComparable({ injections, contents, flowLogs }: Trial): string | undefined {
+export function notComparable({ injections, contents, flowLogs }: Trial): string | undefined {
   if (contents || injections.length === 0) return "tracer was inside at the start";
   if (injections.length > 1) return "several injections overlap in it";
   if (injections[0].form.is === "signal") return "a measured inlet gives moments only";
@@ -102,7 +110,7 @@ function contrastsAt(at: string, members: readonly Member[]): Contrasted[] {
     if (own.length === 0) return [];
     const judged = judge(at, contrast, own, repeats);
     // What tests that should be alike differ by is no effect of what differs elsewhere.
-    if (contrast === "repeat" && judged.verdict === "differ")
+    if (contrast === "repeat" && judged.shape === "differ")
       repeats = ages.map((_, i) => Math.max(...own.map(({ a, b }) => Math.abs(a.curve.F[i] - b.curve.F[i]))));
     return [judged];
   });
@@ -126,7 +134,10 @@ function judge(at: string, contrast: Contrast, pairs: readonly Pair[], repeats: 
   const compared = looked.map((l) => l.compared);
   const differ = chance <= limit.chance && looked.some((l) => l.beyond >= limit.least);
   const coincide = compared.every((c) => c.atMost < limit.margin);
-  return { at, contrast, pairs: compared, chance, verdict: differ ? "differ" : coincide ? "coincide" : "open" };
+  const shape: Verdict = differ ? "differ" : coincide ? "coincide" : "open";
+  const all: readonly Verdict[] =
+    contrast === "repeat" ? [shape, ...compared.flatMap((c) => [c.times, c.amounts])] : [shape];
+  return { at, contrast, pairs: compared, chance, verdict: together(all), shape };
 }
 
 /** A pair, with the largest difference in standard errors and the same of differences that noise alone makes. */
@@ -157,6 +168,11 @@ function look(at: string, { a, b, contrast, differs, flowRatio }: Pair, repeats:
   const volume = ({ flow, curve: { mean, meanError } }: Member): Known | undefined =>
     flow && { value: flow.value * mean, sd: Math.hypot(flow.value * meanError, (flow.sd ?? 0) * mean) };
   const [va, vb] = [volume(a), volume(b)];
+  const timed = ({ flow, curve: { mean, meanError } }: Member): Noisy => {
+    const [value, noise] = [(flow?.value ?? 1) * mean, (flow?.value ?? 1) * meanError];
+    return { value, noise, whole: Math.hypot(noise, (flow?.sd ?? 0) * mean) };
+  };
+  const [ra, rb] = [one.recovery, other.recovery];
   const compared: Compared = {
     at,
     trials: [a.day.trial, b.day.trial],
@@ -169,6 +185,13 @@ function look(at: string, { a, b, contrast, differs, flowRatio }: Pair, repeats:
     relative: [one.relative, other.relative],
     relativeError: Math.hypot(one.relativeError, other.relativeError),
     volumes: va && vb ? [va, vb] : undefined,
+    recoveries: ra &&
+      rb && [
+        { value: ra.value, sd: ra.whole },
+        { value: rb.value, sd: rb.whole },
+      ],
+    times: va && vb ? heldAgainst(timed(a), timed(b)) : "coincide",
+    amounts: ra && rb ? heldAgainst(ra, rb) : "coincide",
   };
   return {
     compared,

@@ -2,13 +2,15 @@
 export const acrossWording = {
   "repeats-agree": {
     weight: "note",
-    message: "tests under the same conditions give one curve within 5 % of the tracer, counted in half times",
+    message:
+      "tests under the same conditions agree: one curve within 5 % of the tracer, counted in half times, and flow times mean and recovery within 5 % where they are known",
     couldBe: "both off in the same way, as a dose or a clock that is always wrong would make them",
     next: "quote them together; differences between other tests may be held against this",
   },
   "repeats-differ": {
     weight: "caution",
-    message: "tests under the same conditions give different curves: more changed than the files say",
+    message:
+      "tests under the same conditions differ, in the curve, its time or what was recovered: more changed than the files say",
     couldBe:
       "a level, a flow or a wind that was not noted, an injection that was not mixed in alike, density of the slug",
     next: "look for what changed and declare it; repeat once more; no curve of these is known better than they differ",

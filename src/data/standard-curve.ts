@@ -3,11 +3,13 @@ import { random } from "../numerics/random.js";
 import { type CleanCurve, cleanReading } from "./clean.js";
 import { distributionOf } from "./distribution.js";
 import { momentErrors } from "./error.js";
+import type { Figure, Known } from "./figure.js";
 import { hopeless } from "./judge.js";
 import { basisOf, dilutionOf } from "./moments.js";
 import type { Noise } from "./noise.js";
+import { onlyFlow, recoveryOf } from "./recovery.js";
 import { redrawing, shortened } from "./redraw.js";
-import { momentsOf, type Response } from "./response.js";
+import { momentsOf, type RawMoments, type Response } from "./response.js";
 import type { MomentsOptions } from "./result.js";
 import { seenResponse } from "./seen.js";
 import { thresholds } from "./thresholds.js";
@@ -30,6 +32,15 @@ export interface StandardCurve {
   readonly meanError: number;
   readonly relative: number;
   readonly relativeError: number;
+  /** Tracer seen over tracer given, with what noise makes of it and with the errors of flow and dose too; undefined where it is not known. */
+  readonly recovery: Noisy | undefined;
+}
+
+/** A figure with two standard errors: by the noise of its curve alone, and with those of flow and dose. */
+export interface Noisy {
+  readonly value: number;
+  readonly noise: number;
+  readonly whole: number;
 }
 
 /**
@@ -82,12 +93,46 @@ export function standardCurve(
     meanError: errors.mean,
     relative: (found.variance - curve.added.variance) / mean ** 2,
     relativeError: errors.relative,
+    recovery: recovered(trial, reading, options, first, found, errors.area),
+  };
+}
+
+function recovered(
+  trial: Trial,
+  reading: Reading,
+  options: MomentsOptions,
+  { curve, recovered: own }: Read,
+  found: RawMoments,
+  areaError: number,
+): Noisy | undefined {
+  const flow = options.throughflow ?? onlyFlow(trial);
+  const injection = trial.injections[0];
+  const whole = recoveryOf(injection, reading, curve, found, flow, own, undefined, areaError, basisOf(trial, options));
+  if (whole.value === undefined) return undefined;
+  const noise = own ? (own.value === undefined ? 0 : (own.standardError ?? 0)) : (areaError / found.area) * whole.value;
+  return { value: whole.value, noise, whole: whole.standardError ?? noise };
+}
+
+/** Mean time since the injection, s, and area of a curve, with what noise makes of them; undefined where it cannot be read without a model. */
+export function meanAndArea(
+  trial: Trial,
+  reading: Reading,
+): { readonly mean: Known; readonly area: Known } | undefined {
+  const first = read(trial, reading, {});
+  const found = first && momentsOf(first.response);
+  if (!first || !found) return undefined;
+  const errors = momentErrors(first.curve, first.response, found, "trapezoid");
+  return {
+    mean: { value: found.mean - first.curve.added.mean, sd: errors.mean },
+    area: { value: found.area, sd: errors.area },
   };
 }
 
 interface Read {
   readonly curve: CleanCurve;
   readonly response: Response;
+  /** What came through of a step. */
+  readonly recovered: Figure | undefined;
 }
 
 function read(trial: Trial, reading: Reading, options: MomentsOptions, noise?: Noise): Read | undefined {
@@ -97,7 +142,7 @@ function read(trial: Trial, reading: Reading, options: MomentsOptions, noise?: N
   const dilution = dilutionOf(injections[0].at, options);
   const flow = options.throughflow;
   const seen = seenResponse(injections[0], reading, curve, flow, "trapezoid", dilution, basisOf(trial, options));
-  return "code" in seen ? undefined : { curve, response: seen.response };
+  return "code" in seen ? undefined : { curve, response: seen.response, recovered: seen.recovered };
 }
 
 /** F over half times; undefined where there is no half time. */

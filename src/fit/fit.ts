@@ -20,6 +20,7 @@ import { prepare } from "./prepare.js";
 import { type Problem as LinearProblem, problemWith } from "./problem.js";
 import { notLinear, profilesOf } from "./profiles.js";
 import { cannotFollow } from "./reacting-model.js";
+import { repeatsOf } from "./repeats.js";
 import { lackOfFit } from "./replicates.js";
 import type { Fit, FittedParameter, FittedReading, FoundOptimum } from "./result.js";
 import { descend, fully, type SearchResult, searchFrom, type Watch } from "./search.js";
@@ -205,14 +206,18 @@ function resultOf(
   const { significant, gain, strands, effective } = estimates.autocorrelation;
   const readings = readingsOf(setup, settled);
   const told = converged && !watch.cancelled();
-  const lack = lackOfFit({
+  const repeats = repeatsOf({
     trials: setup.trials,
     blocks: setup.blocks,
-    readings,
     env: setup.env,
+    apart: setup.coordinates.some((c) => c.trial !== undefined),
+  });
+  const lack = lackOfFit({
+    families: repeats.families,
+    blocks: setup.blocks,
+    readings,
     terms: problem.projectors.map((p) => p.terms),
     left: { sum: at.ofAll, freedom: estimates.freedom },
-    apart: setup.coordinates.some((c) => c.trial !== undefined),
   });
   const profiles = profile && told ? profilesOf(settled, estimates, watch) : undefined;
   const notHolding = told && !profiles ? notLinear(rises, x, estimates, watch) : [];
@@ -243,6 +248,7 @@ function resultOf(
     held: setup.held.map((h, j) => ({ says: h.says, deviations: x[n + j] ?? 0 })),
     ...(profiles ? { profiles } : {}),
     ...(lack ? { lackOfFit: lack } : {}),
+    ...(repeats.unlike.length > 0 ? { unlike: repeats.unlike } : {}),
     findings: findingsOf({
       setup,
       estimates,

@@ -1,23 +1,18 @@
-import type { DutyFeed } from "../model/duty.js";
-import type { Trial } from "../model/trial.js";
-import type { Env, Value } from "../model/value.js";
 import { fTail } from "../numerics/distributions.js";
 import type { Block } from "./observations.js";
 import type { FittedReading, LackOfFit } from "./result.js";
 
 /** What a lack of fit is told from. */
 export interface Replicated {
-  readonly trials: readonly Trial[];
+  /** Blocks of which each point should be as the others' at the same time. */
+  readonly families: readonly (readonly number[])[];
   readonly blocks: readonly Block[];
   /** One per block. */
   readonly readings: readonly FittedReading[];
-  readonly env: Env;
   /** Linear terms of each block. */
   readonly terms: readonly number[];
   /** Weighted sum of squares that the fit leaves, priors included, and its degrees of freedom. */
   readonly left: { readonly sum: number; readonly freedom: number };
-  /** Do parameters have a value of their own in each trial? Then trials are no repeats of one another. */
-  readonly apart: boolean;
 }
 
 /** Standard deviations of a correlation that chance gives. */
@@ -32,15 +27,10 @@ const sure = 2;
  * Applications, Wiley 1988, section 3.12 (both from memory)
  */
 export function lackOfFit(of: Replicated): LackOfFit | undefined {
-  const { trials, blocks, readings, left } = of;
-  const families = new Map<string, number[]>();
-  for (const [b, block] of blocks.entries()) {
-    const key = keyOf(trials[block.trial], block, of);
-    if (!block.censored) families.set(key, [...(families.get(key) ?? []), b]);
-  }
+  const { families, blocks, readings, left } = of;
   let [sum, freedom, count, moments] = [0, 0, 0, 0];
   let [square, product, pairs] = [0, 0, 0];
-  for (const family of families.values()) {
+  for (const family of families) {
     const groups = momentsOf(family, blocks).filter((g) => g.length > 1);
     if (groups.length === 0) continue;
     const logs = new Set(groups.flat().map(({ b }) => b));
@@ -110,40 +100,4 @@ function momentsOf(family: readonly number[], blocks: readonly Block[]): Point[]
     else groups.push([p]);
   }
   return groups;
-}
-
-/** The same for readings of which each point should be as the other's at the same time. */
-function keyOf(trial: Trial, { trial: index, declared }: Block, { env, apart }: Replicated): string {
-  const number = (v: Value | undefined): string | undefined => v?.of(env).toPrecision(6);
-  const { flows, injections, contents, reacting, tracer, conditions } = trial;
-  const levels = (of: ReadonlyMap<string, DutyFeed>) =>
-    [...of].map(([name, { species }]) => [name, [...species].map(([s, { value }]) => [s, number(value)])]);
-  const alone = apart || trial.flowLogs || injections.some((i) => i.form.is === "signal");
-  return JSON.stringify([
-    alone ? index : -1,
-    declared.places.map(({ name, share }) => [name, share]),
-    declared.of?.name,
-    declared.of?.steady,
-    declared.unit.dimension,
-    declared.scale,
-    [number(declared.line.delay), number(declared.line.lag)],
-    [...flows].map(([name, v]) => [name, number(v)]),
-    [...trial.with].map(([name, v]) => [name, number(v)]),
-    [...(conditions ?? [])],
-    injections.map(({ at, lasting, form }) => [
-      at,
-      lasting,
-      form.is,
-      form.is === "pulse" ? number(form.amount) : form.is === "step" ? [number(form.level), number(form.from)] : "",
-    ]),
-    contents?.levels.map(({ of, level }) => [of, number(level)]),
-    tracer,
-    reacting && [
-      reacting.chemistry.path,
-      reacting.vessel?.path,
-      number(reacting.temperature),
-      levels(reacting.feeds),
-      levels(reacting.contents),
-    ],
-  ]);
 }

@@ -40,6 +40,8 @@ export interface Fit {
   readonly profiles?: readonly FittedProfile[];
   /** Against readings of one moment; undefined where there are none. */
   readonly lackOfFit?: LackOfFit;
+  /** Titles of tests under the same conditions whose mean times or areas differ by more than noise: no repeats of one another. */
+  readonly unlike?: readonly string[];
   readonly findings: readonly FitFinding[];
 }
 

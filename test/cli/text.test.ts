@@ -3,8 +3,10 @@ import { describe, expect, test } from "vitest";
 import { curvesCsv } from "../../src/cli/csv.js";
 import { pure, quantity } from "../../src/cli/json/quantity.js";
 import { digitsFor } from "../../src/cli/text/digits.js";
+import { lackOfFitText } from "../../src/cli/text/fit.js";
 import { pairs, table, wrap } from "../../src/cli/text/table.js";
 import { clockFrom } from "../../src/cli/times.js";
+import type { Fit } from "../../src/fit/result.js";
 import { parseUnit } from "../../src/units/parse.js";
 import type { Unit } from "../../src/units/unit.js";
 
@@ -38,6 +40,24 @@ describe("tables", () => {
       }),
     );
   });
+});
+
+test("a lack of fit that repeats are too far apart to show speaks for no network", () => {
+  const text = (f: number, p: number, unlike?: string[]): string => {
+    const lackOfFit = {
+      readings: 120,
+      moments: 60,
+      pure: { sum: 1, freedom: 60 },
+      lack: { sum: 1, freedom: 59 },
+      f,
+      p,
+      correlation: 0,
+    };
+    return lackOfFitText({ lackOfFit, ...(unlike ? { unlike } : {}) } as Fit);
+  };
+  expect(text(0.00674, 1)).toMatch(/differ by far more than the network misses.*does not speak for the network/);
+  expect(text(0.9, 0.6)).not.toMatch(/speak/);
+  expect(text(1.1, 0.4, ["a", "b"])).toMatch(/are no repeats \('a', 'b'\)$/);
 });
 
 describe("numbers", () => {

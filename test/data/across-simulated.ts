@@ -13,6 +13,8 @@ export interface Day {
   /** L/min. */
   readonly flow: number;
   readonly injection?: string;
+  /** Share of the dose that never went in. */
+  readonly lost?: number;
   readonly conditions?: Readonly<Record<string, string>>;
 }
 
@@ -25,8 +27,8 @@ export interface Scenario {
 
 const head = "network: Made for a test\nformat: 1\n";
 const feed = (flow: number, to: string): string => `feeds: {feed: {flow: ${flow} L/min, to: ${to}}}\n`;
-export const tanks = (n: number, flow: number): string =>
-  `${head}${feed(flow, "a")}compartments: {a: {kind: cascade, volume: 100 L, tanks: ${n}, to: product}}\noutlets: [product]\n`;
+export const tanks = (n: number, flow: number, volume = 100): string =>
+  `${head}${feed(flow, "a")}compartments: {a: {kind: cascade, volume: ${volume} L, tanks: ${n}, to: product}}\noutlets: [product]\n`;
 const ahead = (share: number, flow: number): string =>
   `${head}${feed(flow, `{p: ${share} %, a: rest}`)}compartments: {p: {kind: stirred, volume: 3 L, to: product}, a: {kind: stirred, volume: 97 L, repeat: 3, to: product}}\noutlets: [product]\n`;
 const corner = (exchange: number, flow: number, quiet = 20): string =>
@@ -97,6 +99,22 @@ export const scenarios: readonly Scenario[] = [
     true: ["repeats-differ"],
   },
   {
+    name: "three tanks, the second time 15 % smaller",
+    days: [
+      { vessel: tanks(3, 1), flow: 1 },
+      { vessel: tanks(3, 1, 85), flow: 1 },
+    ],
+    true: ["repeats-differ"],
+  },
+  {
+    name: "three tanks, the second time a dose 15 % smaller than was noted",
+    days: [
+      { vessel: tanks(3, 1), flow: 1 },
+      { vessel: tanks(3, 1), flow: 1, lost: 0.15 },
+    ],
+    true: ["repeats-differ"],
+  },
+  {
     name: "three tanks, a step up and a step down",
     days: [
       { vessel: tanks(3, 1), flow: 1, injection: step(0, 1) },
@@ -131,13 +149,13 @@ export const scenarios: readonly Scenario[] = [
 ];
 
 /** The exact curve of a day: minutes since the injection and g/L. */
-export function exactDay({ vessel, flow, injection = "{at: feed, pulse: 100 g}" }: Day) {
+export function exactDay({ vessel, flow, injection = "{at: feed, pulse: 100 g}", lost = 0 }: Day) {
   const { plant } = compile(parseNetwork(vessel).document as Network);
   const { document } = parseTrial(`trial: T\nformat: 1\ninjection: ${injection}\nreadings: [{at: product}]\n`);
   if (!plant) throw new Error("no plant");
   const time = Float64Array.from({ length: 251 }, (_, i) => ((i - 10) * 4) / flow);
   const curve = trialResponse(plant, document as Trial, [{ time: time.map((t) => 60 * t) }])[0];
-  return { time, curve };
+  return { time, curve: curve.map((c) => (1 - lost) * c) };
 }
 
 /** A day with noise of a share of the peak. */

@@ -3,8 +3,11 @@ import { judgeAcross } from "../../src/data/across-rules.js";
 import { acrossTrials } from "../../src/data/across-trials.js";
 import { thresholds } from "../../src/data/thresholds.js";
 import { random } from "../../src/numerics/random.js";
+import { parseUnit } from "../../src/units/parse.js";
+import type { Unit } from "../../src/units/unit.js";
 import { type Day, dayOf, exactDay, type Scenario, scenarios, tanks } from "./across-simulated.js";
 
+const litres = parseUnit("L") as Unit;
 const folder = "../../shared/reference/measured";
 const draws = 6;
 
@@ -54,7 +57,7 @@ ${rows.join("\n")}
   expect(mean(rates.alarm)).toBeLessThan(5);
   expect(mean(rates.hit)).toBeGreaterThan(70);
   await expect(page).toMatchFileSnapshot(`${folder}/across.md`);
-}, 60_000);
+}, 120_000);
 
 describe("several trials", () => {
   const across = (days: readonly Day[], share: number, seed: number) => {
@@ -67,6 +70,24 @@ describe("several trials", () => {
     const chances = Array.from({ length: 40 }, (_, k) => across([day, day], 0.01, 500 + k)?.contrasts[0]?.chance ?? 1);
     expect(chances.filter((c) => c <= 0.05).length).toBeLessThanOrEqual(5);
     expect(chances.filter((c) => c <= 0.5).length).toBeLessThanOrEqual(28);
+  });
+
+  test("repeats must agree in time and in what was recovered, and both figures are told", () => {
+    const told = (other: Day): string[] => {
+      const found = across([{ vessel: tanks(3, 1), flow: 1 }, other], 0.003, 17);
+      if (!found) return [];
+      const { findings } = judgeAcross(found, litres);
+      return findings.map((f) => `${f.code}: ${f.evidence}`);
+    };
+    expect(told({ vessel: tanks(3, 1, 98), flow: 1 })).toEqual([
+      expect.stringMatching(/^repeats-agree: .*flow times mean/),
+    ]);
+    expect(told({ vessel: tanks(3, 1, 85), flow: 1 })).toEqual([
+      expect.stringMatching(/^repeats-differ: .*flow times mean (99|100)[^ ]* L ± [^ ]+ and 8[45][^ ]* L ± /),
+    ]);
+    expect(told({ vessel: tanks(3, 1), flow: 1, lost: 0.15 })).toEqual([
+      expect.stringMatching(/^repeats-differ: .*recovered (99|100)[^ ]* ± [^ ]+ % and (84|85)/),
+    ]);
   });
 
   test("the order of the trials and the unit of time change nothing but names", () => {

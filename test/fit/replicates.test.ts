@@ -60,6 +60,40 @@ describe("lack of fit", () => {
     expect(p.every(([, wrong]) => wrong < 1e-3)).toBe(true);
   });
 
+  test("takes no tests for repeats whose mean times or areas differ by more than noise", () => {
+    const other = (tankVolume: number, dose: string, seed: number) =>
+      synthetic(
+        tank,
+        { tank: tankVolume },
+        {
+          injection: `{at: feed, pulse: ${dose}, start: 0 min, lasting: 1 min}`,
+          at: "out",
+          times: every(1, 80),
+          noise: noise(seed, 4e-3),
+        },
+      );
+    const apart = fitted(tank, [other(0.1, "50 g", 1), other(0.085, "50 g", 2)], { starts: 0 });
+    expect(apart.lackOfFit).toBeUndefined();
+    expect(apart.unlike).toHaveLength(2);
+    const alike = fitted(tank, [other(0.1, "50 g", 1), other(0.1, "50 g", 2)], { starts: 0 });
+    expect(alike.lackOfFit?.moments).toBe(80);
+    expect(alike.unlike).toBeUndefined();
+    // Repeats within a test still count.
+    const twice = [...every(1, 80), ...every(1, 80)].sort((a, b) => a - b);
+    const own = (volume: number, seed: number) =>
+      synthetic(
+        tank,
+        { tank: volume },
+        {
+          injection: "{at: feed, pulse: 50 g, start: 0 min, lasting: 1 min}",
+          at: "out",
+          times: twice,
+          noise: noise(seed, 4e-3),
+        },
+      );
+    expect(fitted(tank, [own(0.1, 3), own(0.085, 4)], { starts: 0 }).lackOfFit?.pure.freedom).toBe(160);
+  });
+
   test("is a finding where it is there, and nothing where no reading is repeated", () => {
     const twice = [trial(1), trial(2)];
     expect(fitted(two, twice).findings.map((f) => f.code)).toContain("lack-of-fit");

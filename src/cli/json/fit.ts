@@ -38,6 +38,7 @@ export function fitJson(fit: Fit, time: Unit, refits?: Bootstrap): Record<string
     held: fit.held,
     patterns: patternsOf(fit.readings),
     lackOfFit: fit.lackOfFit ? lackOfFitJson(fit.lackOfFit) : null,
+    ...(fit.unlike ? { unlikeTests: fit.unlike } : {}),
     ...(refits ? { bootstrap: bootstrapJson(refits) } : {}),
     ...(fit.profiles ? { profiles: Object.fromEntries(fit.profiles.map((p) => [p.name, profileJson(p)])) } : {}),
     findings: fit.findings,

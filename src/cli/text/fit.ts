@@ -1,5 +1,6 @@
 import type { Bootstrap } from "../../fit/bootstrap.js";
 import type { ProfileEnd } from "../../fit/profile.js";
+import { unlikeText } from "../../fit/repeats.js";
 import type { Resampling } from "../../fit/resample.js";
 import type { Estimate, Fit, FitFinding } from "../../fit/result.js";
 import { formatNumber } from "../../units/format.js";
@@ -59,11 +60,13 @@ function parametersTable(fit: Fit): string {
 }
 
 /** What repeated readings say of the fit, in a line. */
-export function lackOfFitText({ lackOfFit: lack }: Fit): string {
+export function lackOfFitText({ lackOfFit: lack, unlike }: Fit): string {
+  const apart = unlike ? unlikeText(unlike) : "";
+  if (!lack && unlike) return `lack of fit: not told, as ${apart}`;
   if (!lack) return "lack of fit: not told, as no two readings are of one moment (repeat samples, or the test)";
   const { f, p, pure, lack: rest, readings, moments } = lack;
   const chance = p < 0.001 ? "below 0.001" : formatNumber(p, 2);
-  return `lack of fit: ${p < 0.01 ? "shown" : "not shown"} by ${readings} readings of ${moments} moments, F ${formatNumber(f, 3)} on ${rest.freedom} and ${pure.freedom} degrees of freedom, chance ${chance}`;
+  return `lack of fit: ${p < 0.01 ? "shown" : "not shown"} by ${readings} readings of ${moments} moments, F ${formatNumber(f, 3)} on ${rest.freedom} and ${pure.freedom} degrees of freedom, chance ${chance}${p > 0.99 ? "; readings of one moment differ by far more than the network misses, as they do where tests differ: this does not speak for the network" : ""}${apart === "" ? "" : `; ${apart}`}`;
 }
 
 /** Analyses of the settled vessel; curves are for pictures. */

@@ -189,6 +189,8 @@ function open(result: StudyResult): string {
   if (loose.length > 0) return `${capital(loose[0].message)}. ${capital(loose[0].fix)}.`;
   const trials = result.readings.length;
   if (trials < 2) return "One test says nothing of the next day. Repeat it, best at another flow.";
+  if (result.across?.findings.some((f) => f.code === "repeats-differ"))
+    return "Why tests under the same conditions differ: no figure here is surer than they agree. Look for what changed, and repeat one test before money is spent.";
   return "Whether the vessel is the same on another day. Repeat one test before money is spent, and again after the change.";
 }
 

@@ -1,4 +1,5 @@
 import { shapeCodes } from "../../data/shape-rules.js";
+import { unlikeText } from "../../fit/repeats.js";
 import type { StudyResult } from "../../study/result.js";
 import { chance } from "../digits.js";
 import type { ReportFinding, StudyReport } from "../input.js";
@@ -51,7 +52,9 @@ export function notSupportedOf({ readings, across, ranking }: StudyResult): Stud
   // Without repeats nothing but the network itself says how far readings may be off.
   if (fit && !fit.lackOfFit)
     add(
-      "lack of fit: no two readings are of one moment; samples or a test that are repeated would tell what is error",
+      fit.unlike
+        ? `lack of fit: ${unlikeText(fit.unlike)}`
+        : "lack of fit: no two readings are of one moment; samples or a test that are repeated would tell what is error",
       "",
     );
   return [...byWhat].map(([what, says]) => ({ what, says }));
