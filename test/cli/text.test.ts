@@ -6,7 +6,6 @@ import { digitsFor } from "../../src/cli/text/digits.js";
 import { lackOfFitText } from "../../src/cli/text/fit.js";
 import { pairs, table, wrap } from "../../src/cli/text/table.js";
 import { clockFrom } from "../../src/cli/times.js";
-import type { Fit } from "../../src/fit/result.js";
 import { parseUnit } from "../../src/units/parse.js";
 import type { Unit } from "../../src/units/unit.js";
 
@@ -53,7 +52,7 @@ test("a lack of fit that repeats are too far apart to show speaks for no network
       p,
       correlation: 0,
     };
-    return lackOfFitText({ lackOfFit, ...(unlike ? { unlike } : {}) } as Fit);
+    return lackOfFitText({ lackOfFit, ...(unlike ? { unlike } : {}) });
   };
   expect(text(0.00674, 1)).toMatch(/differ by far more than the network misses.*does not speak for the network/);
   expect(text(0.9, 0.6)).not.toMatch(/speak/);

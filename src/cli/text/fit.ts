@@ -60,7 +60,7 @@ function parametersTable(fit: Fit): string {
 }
 
 /** What repeated readings say of the fit, in a line. */
-export function lackOfFitText({ lackOfFit: lack, unlike }: Fit): string {
+export function lackOfFitText({ lackOfFit: lack, unlike }: Pick<Fit, "lackOfFit" | "unlike">): string {
   const apart = unlike ? unlikeText(unlike) : "";
   if (!lack && unlike) return `lack of fit: not told, as ${apart}`;
   if (!lack) return "lack of fit: not told, as no two readings are of one moment (repeat samples, or the test)";
