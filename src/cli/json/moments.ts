@@ -27,7 +27,10 @@ function readingJson(r: ReadingMoments): object {
     t84: figureJson(r.t84),
     t90: figureJson(r.t90),
     percentilesApproximate: r.percentilesShifted,
-    indices: Object.fromEntries(Object.entries(r.indices).map(([name, f]) => [camel(name), figureJson(f)])),
+    indices: {
+      ...notEstimable,
+      ...Object.fromEntries(Object.entries(r.indices).map(([name, f]) => [camel(name), figureJson(f)])),
+    },
     tail: tailJson(r),
     noise: { ...r.noise, sd: figureJson(r.noise.sd) },
     steps: r.steps.map((s) => stepJson(s, time)),
@@ -47,6 +50,14 @@ function readingJson(r: ReadingMoments): object {
       : null,
   };
 }
+
+/** Indices that stand there always; those that no volume or flow is known for have no value. */
+const notEstimable = Object.fromEntries(
+  ["morrill", "holdback", "segregation", "tanks", "peclet"].map((name) => [
+    name,
+    { value: null, unit: "1", why: "not-estimable" },
+  ]),
+);
 
 const one: Unit = { name: "", factor: 1, offset: 0, dimension: [0, 0, 0, 0, 0, 0, 0] };
 
