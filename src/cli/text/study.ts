@@ -4,6 +4,7 @@ import type { Problem } from "../../problems/problem.js";
 import { chance, figureLine } from "../../report/digits.js";
 import type { AnswerLine } from "../../report/input.js";
 import { reportAims } from "../../report/study/asked.js";
+import { steadyTitle } from "../../report/study/before-change.js";
 import { decisionWords } from "../../report/study/decision-words.js";
 import { studyDiversionWords } from "../../report/study/diversion-words.js";
 import { regulatedCaution, regulatedLines } from "../../report/study/regulated-words.js";
@@ -87,7 +88,10 @@ function predictionsTable({ predictions }: StudyResult): string {
     const shown = people(name, unit);
     const bound = (si: number | undefined): string => (si === undefined ? "" : formatQuantity(si, shown, 3));
     const ends = [bound(bounds?.segregated), bound(bounds?.maximumMixedness)];
-    return { by: rival.network.title, cells: [duty.title, name, estimate(name, value, interval95, shown), ...ends] };
+    return {
+      by: rival.network.title,
+      cells: [steadyTitle(duty, name), name, estimate(name, value, interval95, shown), ...ends],
+    };
   });
   return tableBy(
     [

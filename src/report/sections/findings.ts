@@ -8,7 +8,7 @@ export function findingsSection({ findings, notSupported, data: tested }: StudyR
   const found =
     findings.length > 0 ? findings.map(findingBlock) : [paragraph("The data show nothing that needs a finding.")];
   const told = notSupported.map(({ what, says }) => [what, says.join(". ")] as const);
-  const not = told.length > 0 ? `<h3>What the data do not support</h3>${terms(told)}` : "";
+  const not = told.length > 0 ? `<h3>What the curves alone, without a model, do not show</h3>${terms(told)}` : "";
   return section("findings", "Findings", [...found, not]);
 }
 

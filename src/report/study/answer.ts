@@ -4,6 +4,7 @@ import type { Unit } from "../../units/unit.js";
 import { chance, estimateLine, figureLine } from "../digits.js";
 import type { AnswerLine } from "../input.js";
 import { aimWords } from "./aim-words.js";
+import { steadyTitle } from "./before-change.js";
 import { decisionWords, tellingWords } from "./decision-words.js";
 import { spreadWords } from "./driver-words.js";
 import { differenceEstimate, estimate, readingUnit } from "./estimate.js";
@@ -101,7 +102,7 @@ function makes(result: StudyResult): string[] {
     const p = first.find((x) => x.duty === duty);
     if (!p) return [];
     const unit = readingUnit(duty, p.name, p.unit);
-    const now = `${duty.title}: ${p.name} ${figureLine(p.name, estimate(p.value, p.interval95, unit))}${beyondWords(result.study, duty)}`;
+    const now = `${steadyTitle(duty, p.name)}: ${p.name} ${figureLine(p.name, estimate(p.value, p.interval95, unit))}${beyondWords(result.study, duty)}`;
     const other = otherState(p, first.filter((x) => x.duty === duty).indexOf(p), unit);
     if (!p.bounds || p.bounds.apply === "no") return [`${now}.${other}`];
     if (p.bounds.position === undefined) return [`${now}; with these rates the residence times alone fix it.${other}`];

@@ -3,6 +3,7 @@ import type { Spread } from "../../study/spread-shares.js";
 import { formatNumber } from "../../units/format.js";
 import { inUnit, type Unit } from "../../units/unit.js";
 import type { Prediction } from "../input.js";
+import { steadyTitle } from "./before-change.js";
 import { driverName, methodWords, spreadWords } from "./driver-words.js";
 import { estimate, readingUnit } from "./estimate.js";
 
@@ -14,7 +15,7 @@ function predictionRow(p: StudyResult["predictions"][number]): Prediction {
   const unit = readingUnit(p.duty, p.name, p.unit);
   const b = p.bounds;
   return {
-    duty: p.duty.title,
+    duty: steadyTitle(p.duty, p.name),
     name: p.name,
     estimate: estimate(p.value, p.interval95, unit),
     ...(b && b.apply !== "no"

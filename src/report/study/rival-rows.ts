@@ -30,11 +30,20 @@ function rivalRow(r: Ranked, place: number, result: StudyResult): Rival {
   };
 }
 
+/** How much more is left unexplained: of readings in several units the geometric mean, each by its own scatter. */
 function ratioWords(r: Ranked, lead: Ranked): string {
-  const ratio = (r.fit?.residualSumOfSquares ?? 0) / (lead.fit?.residualSumOfSquares ?? 1);
+  const ratio = Math.exp(deviancePerReading(r) - deviancePerReading(lead));
   return ratio >= 10
     ? `${Number(ratio.toPrecision(2)).toLocaleString("en").replace(/,/g, " ")} times`
     : `${ratio.toPrecision(3)} times`;
+}
+
+/** Logarithm of the scatter that a fit leaves, but for what is the same in all fits to the same readings: AICc without its price. */
+function deviancePerReading({ fit }: Ranked): number {
+  if (!fit) return Number.NaN;
+  const { aicc, observations: n, freeParameters } = fit;
+  const k = freeParameters + 1;
+  return (aicc - 2 * k - (2 * k * (k + 1)) / (n - k - 1)) / n;
 }
 
 /** What these tests, or any test at the outlet, cannot tell apart. */
