@@ -19,6 +19,7 @@ import { seenResponse } from "./seen.js";
 import { shapeOf } from "./shape.js";
 import { judgeShape } from "./shape-rules.js";
 import { type Sight, sightOf } from "./sight.js";
+import type { Rule } from "./weights.js";
 
 export type { MomentsOptions, MomentsResult, ReadingMoments } from "./result.js";
 
@@ -73,7 +74,7 @@ export function readCurve(
   const mixed = reading.places.length > 1;
   const flow = mixed ? undefined : (options.flowAt?.(reading.at) ?? onlyFlow(trial));
   const whole = options.throughflow ?? flow;
-  const rule = options.rule ?? "cubic";
+  const rule = ruleFor(curve, options);
   const basis = basisOf(trial, options);
   const stop =
     (trial.injections.length > 1
@@ -218,7 +219,7 @@ function agedSight(
   options: MomentsOptions,
 ): Sight | undefined {
   const injection = trial.injections[0];
-  const rule = options.rule ?? "cubic";
+  const rule = ruleFor(curve, options);
   const dilution = dilutionOf(injection.at, options);
   const seen = seenResponse(injection, reading, curve, whole, rule, dilution, basisOf(trial, options));
   const found = "code" in seen ? undefined : momentsOf(seen.response);
@@ -248,3 +249,9 @@ export function dilutionOf(at: string, { feeds }: MomentsOptions): number {
   const own = feeds?.get(at);
   return own === undefined || !feeds ? 1 : own / [...feeds.values()].reduce((sum, f) => sum + f, 0);
 }
+
+/** Readings under which no curve between them is to be had: their moments are summed by trapezoids, as worked examples do. */
+const fewForCurves = 30;
+
+const ruleFor = (curve: CleanCurve, { rule }: MomentsOptions): Rule =>
+  rule ?? (curve.time.length < fewForCurves ? "trapezoid" : "cubic");

@@ -26,6 +26,7 @@ export interface MomentsOptions {
   readonly closed?: boolean;
   /** The tracer divides as this substance does, not as the liquid: its mean time is not volume over flow. */
   readonly follows?: string;
+  /** How areas are summed; left out: cubics between readings, trapezoids where there are few. */
   readonly rule?: Rule;
   /** The unit that times are shown in; that of the reading's own where left out. */
   readonly timeUnit?: Unit;
