@@ -77,11 +77,16 @@ describe("one finding a place, at the place", () => {
   });
 });
 
-describe("what this version does not honour is refused", () => {
-  test("a flow of a duty that changes in time", () => {
-    const duty = (flow: string): string => `duty: d\nformat: 1\nflows: {feed: ${flow}}\nfeeds: {feed: {A: 1 mol/L}}\n`;
-    expect(check(duty("1 L/min")).findings).toEqual([]);
-    expect(check(duty("{file: q.csv}")).findings).toEqual(["not-yet feed"]);
+describe("a flow of a duty", () => {
+  const duty = (flow: string): string => `duty: d\nformat: 1\nflows: {feed: ${flow}}\nfeeds: {feed: {A: 1 mol/L}}\n`;
+
+  test.each([
+    ["1 L/min", []],
+    ["{from: 1 L/min, to: 2 L/min, start: 5 min, lasting: 1 min}", []],
+    ["{file: q.csv, time: {column: t, unit: min}, value: {column: q, unit: L/min}}", []],
+    ["{file: q.csv}", ["missing-key feed", "missing-key feed"]],
+  ])("may change in time: %s", (flow, findings) => {
+    expect(check(duty(flow)).findings).toEqual(findings);
   });
 });
 
