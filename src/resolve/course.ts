@@ -8,6 +8,7 @@ import { dimensions, sameDimension } from "../units/dimension.js";
 import { formatQuantity } from "../units/format.js";
 import type { Unit } from "../units/unit.js";
 import { concentrationBases } from "./bases.js";
+import { certain } from "./certain.js";
 import { resolveFlowLog } from "./flow-log.js";
 import { aboveZero } from "./sign.js";
 import { type ResolvedTable, resolveTable } from "./trial-table.js";
@@ -93,6 +94,7 @@ export function resolveFlows(
         ? loggedFlow(key.text, value, files, report)
         : resolveUpset(value, of, report);
       if (!changing) continue;
+      if (changing.course.is === "upset") certain(`what ${of.what} changes to`, changing.course.to, report);
       flows.set(key.text, { at: key.at, value: changing.before });
       flowCourses.set(key.text, changing.course);
       continue;
@@ -120,6 +122,7 @@ function resolveUpset(node: MapNode, { what, zero, toZero, read }: Changed, repo
     const written = child(node, key);
     if (!written) return "none";
     const value = resolveValue(written, dimensions.time, emptyScope, report);
+    certain(`the ${name} of an upset`, value, report);
     return value && aboveZero(`the ${name} of an upset`, value, orZero, report) ? value : undefined;
   };
   const [before, to] = [level("from", zero), level("to", toZero)];

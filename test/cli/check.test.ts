@@ -97,7 +97,7 @@ describe("check", () => {
   test("of a duty that changes in time it says what goes where, and when", async () => {
     const duty = `duty: A day
 format: 1
-flows: {raw: {from: 3 L/min, to: 6 L/min ± 5 %, start: 10 min, lasting: 1 h}, dye: {file: pump.csv, time: {column: t, unit: h}, value: {column: Q, unit: L/min}}}
+flows: {raw: {from: 3 L/min, to: 6 L/min, start: 10 min, lasting: 1 h}, dye: {file: pump.csv, time: {column: t, unit: h}, value: {column: Q, unit: L/min}}}
 chemistry: c.yaml
 heat: adiabatic
 feeds:
@@ -113,7 +113,7 @@ feeds:
       "day.yaml: duty, ok
 
         chemistry   Decay
-        flow        raw 3 L/min (6 L/min ± 5 % from 10 min to 70 min)
+        flow        raw 3 L/min (6 L/min from 10 min to 70 min)
         flow        dye 0.5 L/min (logged, 3 rows to 0.6 L/min at 120 min)
         fed by raw  A 1 mol/L (2 mol/L from 1.5 min on), at 20 degC (35 degC from 0 min to 2 min)
         fed by dye  A 0 mol/L, at 20 degC
