@@ -114,7 +114,7 @@ describe("the program as a process", () => {
       join(folder, "p1-pulse.yaml"),
       readFileSync("test/fit/p1/p1-pulse.yaml", "utf8").replace("p1-data.csv", "p1.csv"),
     );
-    const child = start(["fit", "-", "--trial", "p1-pulse.yaml", "--starts", "1000"]);
+    const child = start(["fit", "-", "--trial", "p1-pulse.yaml", "--starts", "200000"]);
     const end = ended(child);
     // More than a pipe holds: once it is all gone, the fit has begun to read and the interrupt will be heard.
     const long = `${readFileSync("test/fit/p1/p1.yaml", "utf8")}${"# as drawn\n".repeat(100_000)}`;
