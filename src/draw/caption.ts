@@ -48,6 +48,18 @@ export function drawCaption({ lines, box, anchor }: Caption): Svg {
     .join("");
 }
 
+/** A title in as many lines as keep it within a width, px; a single word is not cut. */
+export function titleLines(title: string, width: number): Words[] {
+  const lines: Words[] = [];
+  for (const word of title.split(" ")) {
+    const last = lines.pop();
+    const joined: Words = { words: last ? `${last.words} ${word}` : word, style: "title" };
+    if (last && extent([joined]).width > width) lines.push(last, { words: word, style: "title" });
+    else lines.push(joined);
+  }
+  return lines;
+}
+
 const size = ({ style }: Words): number => (style === "title" ? 15 : style === "name" ? 12 : 11);
 
 const weight = ({ style }: Words): "regular" | "bold" => (style === "name" || style === "title" ? "bold" : "regular");

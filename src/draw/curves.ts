@@ -1,6 +1,6 @@
 import type { Svg } from "../svg/svg.js";
 import { formatNumber } from "../units/format.js";
-import { caption, drawCaption } from "./caption.js";
+import { caption, drawCaption, extent, titleLines } from "./caption.js";
 import type { Curves, CurvesOptions } from "./curves-input.js";
 import { panel } from "./panel.js";
 import { picture } from "./picture.js";
@@ -19,9 +19,10 @@ export const plotCurves = (curves: Curves, options: CurvesOptions = {}): Plotted
 export function plotStacked(title: string, all: readonly Curves[], options: CurvesOptions = {}): Plotted {
   const width = options.width ?? 640;
   const height = options.height ?? 240;
-  const parts = options.untitled ? [] : [drawCaption(caption([{ words: title, style: "title" }], 0, 0))];
+  const lines = titleLines(title, width);
+  const parts = options.untitled ? [] : [drawCaption(caption(lines, 0, 0))];
   const plots: PlotData[] = [];
-  let top = options.untitled ? 22 : 54;
+  let top = options.untitled ? 22 : 34 + extent(lines).height;
   // One left edge for all.
   const sized = { ...options, width, height };
   const left = all.length > 1 ? Math.max(...all.map((curves) => panel(curves, sized, 0).data.box.x)) : 0;
