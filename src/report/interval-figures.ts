@@ -10,20 +10,24 @@ const column = { untitled: true, width: columnWidth };
 
 /** What the vessel makes: a drawing for each quantity, a row for each duty. */
 export const predictionFigures = ({ predictions }: StudyReport): Figure[] =>
-  grouped(predictions, (p) => `${p.name}, ${p.estimate.unit}`).map(([quantity, list], k) => {
+  grouped(predictions, (p) => `${p.name}, ${p.estimate.unit}`).flatMap(([quantity, list], k): Figure[] => {
     const intervals = { title: quantity, quantity, rows: list.flatMap(predictionRow) };
-    return {
+    if (intervals.rows.length === 0) return [];
+    const figure: Figure = {
       name: `prediction-${k + 1}`,
       ...plotIntervals(intervals, column),
       caption: list.some((p) => p.bounds)
         ? `${capital(inBrackets(quantity))}: value, 95 % interval, and where full segregation and maximum mixedness would put it.`
         : `${capital(inBrackets(quantity))}: value and 95 % interval.`,
     };
+    return [figure];
   });
 
 function predictionRow(p: Prediction): readonly IntervalRow[] {
   const { value, low, high } = p.estimate;
   if (value === undefined || low === undefined || high === undefined) return [];
+  // What has no end has no place on an axis: the table tells it.
+  if (![value, low, high].every(Number.isFinite)) return [];
   const text = figureLine(p.name, p.estimate);
   return [{ label: p.duty, value, low, high, text, ...(p.bounds ? { bounds: p.bounds } : {}) }];
 }

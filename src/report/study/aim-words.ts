@@ -62,7 +62,9 @@ export function aimWords(found: AimResult): string[] {
       `At the middle values: of what is possible, ${shares} ${side} there. A confidence of 90 % adds a margin.`,
     );
   }
-  const error = (crossings.length > 0 ? crossings : best ? [best] : []).map((c) => c.shareError ?? 0);
+  // Where no share is told there is none to be sure of.
+  const nearest = best && confidence !== undefined ? [best] : [];
+  const error = (crossings.length > 0 ? crossings : nearest).map((c) => c.shareError ?? 0);
   if (Math.max(0, ...error) > 0) {
     const percent = Number((100 * Math.max(...error)).toPrecision(2));
     said.push(`The share is known to ± ${percent} % from ${draws} draws; more make it surer.`);
