@@ -72,13 +72,9 @@ function save(folder: string, report: StudyReport, io: Io): string {
   return page;
 }
 
-const commandLine = (file: string, { output, starts }: StudyOptions): string =>
-  [
-    "backmix study",
-    file,
-    ...(output === undefined ? [] : ["-o", output]),
-    ...(starts === undefined ? [] : ["--starts", starts]),
-  ].join(" ");
+/** What makes the same numbers again: where the report was written is not part of that. */
+const commandLine = (file: string, { starts }: StudyOptions): string =>
+  ["backmix study", file, ...(starts === undefined ? [] : ["--starts", starts])].join(" ");
 
 function notesOf(
   status: ExitStatus,
