@@ -66,8 +66,8 @@ export function networkModel(network: Network): ForwardModel {
   const plantFor = (trial: Trial, values: Settings): Plant | undefined => {
     const known = kept.find((k) => k.values === values && k.trial === trial);
     if (known) return known.plant;
-    const { plant: any } = compile(settingsOfDay(network, trial, values));
-    const plant = any && network.requires.every((r) => r.slack(any.env) >= 0) ? any : undefined;
+    const { plant: made } = compile(settingsOfDay(network, trial, values));
+    const plant = made && network.requires.every((r) => r.slack(made.env) >= 0) ? made : undefined;
     if (kept.length === mostKept) kept.shift();
     kept.push({ trial, values, plant });
     return plant;

@@ -65,8 +65,8 @@ const random: fc.Arbitrary<Case> = fc
     const pair = fc
       .integer({ min: 0, max: sizes.length - 2 })
       .chain((c) => fc.record({ from: fc.constantFrom(...columns[c]), to: fc.constantFrom(...columns[c + 1]) }));
-    const any = fc.constantFrom(...columns.flat());
-    const lane = fc.record({ from: any, to: any, side: fc.constantFrom("over" as const, "under" as const) });
+    const column = fc.constantFrom(...columns.flat());
+    const lane = fc.record({ from: column, to: column, side: fc.constantFrom("over" as const, "under" as const) });
     return fc.record({
       columns: fc.constant(columns),
       steps: fc.uniqueArray(pair, { selector: (s) => `${s.from}>${s.to}`, maxLength: 12 }),
